@@ -1,0 +1,21 @@
+import { fileURLToPath } from 'node:url';
+import { defineConfig } from 'vitest/config';
+
+const at = (path: string): string => fileURLToPath(new URL(path, import.meta.url));
+
+/** Unit tests of libs and server, and the reference checks. Web tests run through the Angular builder, browser tests through Playwright. */
+export default defineConfig({
+  resolve: {
+    alias: [
+      { find: /^@tallystone\/numeric$/, replacement: at('./libs/numeric/index.ts') },
+      { find: /^@tallystone\/numeric\/(.*)$/, replacement: `${at('./libs/numeric')}/$1` },
+      { find: /^@tallystone\/contracts\/(.*)$/, replacement: `${at('./libs/contracts')}/$1` },
+    ],
+  },
+  test: {
+    include: ['libs/**/*.spec.ts', 'server/**/*.spec.ts', 'data-demo/**/*.spec.ts', 'tests/{reference,api,faults}/**/*.spec.ts'],
+    passWithNoTests: false,
+    testTimeout: 30_000,
+    hookTimeout: 60_000,
+  },
+});
