@@ -106,6 +106,17 @@ function programs(cluster, say) {
   );
 }
 
+/**
+ * Makes sure that PostgreSQL's programs are there, installing them as root; `before` runs first when that is going to take a while.
+ *
+ * @param {string | undefined} data data folder, when it is known already: an existing cluster decides the version
+ * @throws {SetupProblem} saying what to install
+ */
+export async function ensureProgramsFor(data, { say = () => {}, before } = {}) {
+  if (before && candidateFolders().length === 0) await before();
+  programs(places(data ?? '.').cluster, say);
+}
+
 // --- The account it runs as -------------------------------------------------------------------------------------------
 
 /** As root: the ids of the account `postgres`. Otherwise nothing: PostgreSQL runs as whoever started this. */
