@@ -150,6 +150,33 @@ export function barredFolder(folder) {
   return undefined;
 }
 
+/**
+ * Makes the data folder, so that the account that runs PostgreSQL can pass through it when it will hold one.
+ *
+ * @throws {SetupProblem} when it cannot be made, entered or written, naming the folder that is in the way
+ */
+export function makeDataFolder(folder, withPostgres) {
+  const barred = withPostgres ? barredFolder(folder) : undefined;
+  if (barred) {
+    throw new SetupProblem(
+      `As root, PostgreSQL runs as the account "postgres", and that account cannot enter ${barred}. Choose another data folder, for example TALLYSTONE_DATA=/var/lib/tallystone, or allow it to pass with: chmod o+x ${barred}`,
+    );
+  }
+  try {
+    if (!fs.existsSync(folder)) {
+      const first = fs.mkdirSync(folder, { recursive: true });
+      // A strict umask would shut PostgreSQL out of what was made just now; only of that may the mode be changed.
+      const made = path.relative(path.dirname(first), folder).split(path.sep);
+      for (let count = 1; count <= made.length; count += 1) {
+        fs.chmodSync(path.join(path.dirname(first), ...made.slice(0, count)), withPostgres && isRoot() ? 0o711 : 0o700);
+      }
+    }
+    fs.accessSync(folder, fs.constants.R_OK | fs.constants.W_OK);
+  } catch (error) {
+    throw new SetupProblem(`The data folder ${folder} cannot be written by this account: ${error.message}`);
+  }
+}
+
 function run(program, args, { input, env, ids, timeout = 120_000 } = {}) {
   return new Promise((resolve) => {
     const child = execFile(
@@ -408,17 +435,7 @@ export async function startPostgres({ data, test = false, port, say = () => {} }
   const bin = programs(at.cluster, say);
   const ids = account();
 
-  try {
-    fs.mkdirSync(at.folder, { recursive: true, mode: ids ? 0o711 : 0o700 });
-  } catch (error) {
-    throw new SetupProblem(`The data folder ${at.folder} cannot be created: ${error.message}`);
-  }
-  const barred = barredFolder(at.folder);
-  if (barred) {
-    throw new SetupProblem(
-      `As root, PostgreSQL runs as the account "postgres", and that account cannot enter ${barred}. Choose another data folder, for example TALLYSTONE_DATA=/var/lib/tallystone, or allow it to pass with: chmod o+x ${barred}`,
-    );
-  }
+  makeDataFolder(at.folder, true);
 
   let secrets = readSecrets(at.secrets);
   const exists = fs.existsSync(path.join(at.cluster, 'PG_VERSION'));

@@ -19,7 +19,7 @@ import { setTimeout as sleep } from 'node:timers/promises';
 import { ensureBuilt } from './build.mjs';
 import { ROOT, checkNode, ensurePackages, runProgram } from './install.mjs';
 import { ensureKeys } from './keys.mjs';
-import { SetupProblem, barredFolder, ensureProgramsFor, startPostgres, stopPostgres, writePrivately } from './postgres.mjs';
+import { SetupProblem, barredFolder, ensureProgramsFor, makeDataFolder, startPostgres, stopPostgres, writePrivately } from './postgres.mjs';
 
 const HOST = process.env.HOST || '127.0.0.1';
 const DRAIN_MS = 35_000;
@@ -311,12 +311,7 @@ async function main() {
 
   if (!existing) await ensureProgramsFor(process.env.TALLYSTONE_DATA, { say, before: () => checkPort(port) });
   state.data = chooseDataFolder(!existing);
-  try {
-    fs.mkdirSync(state.data, { recursive: true, mode: existing ? 0o700 : 0o711 });
-    fs.accessSync(state.data, fs.constants.W_OK);
-  } catch (error) {
-    throw new SetupProblem(`The data folder ${state.data} cannot be written: ${error.message}`);
-  }
+  makeDataFolder(state.data, !existing);
   const runFile = path.join(state.data, 'run.json');
   await takeOver(runFile);
   await checkPort(port);
