@@ -1,0 +1,213 @@
+/**
+ * The specification: everything needed to replay a fit from the raw file. Pure types, no zod: safe for the browser's first load.
+ * These are the *complete* forms, with every default applied; what a file may leave out is said in schema.ts and docs/specification.md.
+ */
+
+export type Encoding = 'utf-8' | 'utf-16le' | 'utf-16be' | 'windows-1252';
+
+/** How the raw file is read. */
+export interface DataReading {
+  /** SHA-256 of the file's bytes, lower-case hexadecimal; null = not tied to one file. */
+  sha256: string | null;
+  /** One character. */
+  delimiter: string;
+  encoding: Encoding;
+  decimal: '.' | ',';
+  /** One character, or null: no thousands sign is accepted. */
+  thousands: string | null;
+  /** Blanks and tabs around unquoted fields are removed. */
+  trim: boolean;
+  /** Texts that mean "missing", in every column. */
+  missing: string[];
+}
+
+/**
+ * A test on one column. Several keys must all hold. A missing value passes only `missing: true`.
+ * The four limits are numbers, or ISO dates (YYYY-MM-DD) for a column of ISO dates.
+ */
+export interface ColumnTest {
+  column: string;
+  in?: string[];
+  notIn?: string[];
+  below?: number | string;
+  atMost?: number | string;
+  above?: number | string;
+  atLeast?: number | string;
+  missing?: boolean;
+}
+
+export type RowTest = ColumnTest | { all: RowTest[] } | { any: RowTest[] };
+
+/** A row counts at the first rule that takes it out. */
+export type Exclusion = { reason: string } & RowTest;
+
+/** Which texts of the outcome column mean what. The four lists are disjoint. */
+export interface OutcomeDefinition {
+  column: string;
+  good: string[];
+  bad: string[];
+  indeterminate: string[];
+  excluded: string[];
+}
+
+export type DeclinedMethod = 'none' | 'reweighting' | 'parcelling' | 'fuzzy';
+
+export interface DeclinedTreatment {
+  column: string;
+  values: string[];
+  method: DeclinedMethod;
+  /** Score bands of parcelling. */
+  bands: number;
+  /** Factor on a band's bad rate in parcelling. */
+  uplift: number;
+}
+
+export interface PartitionByColumn {
+  column: string;
+  development: string[];
+  holdOut: string[];
+  outOfTime: string[];
+}
+
+export interface PartitionBySeed {
+  seed: number;
+  /** Share of goods and of bads, each rounded, that become hold-out. */
+  holdOutShare: number;
+  /** Rows whose ISO date lies in [from, to], both ends included, null = open. */
+  outOfTime: { column: string; from: string | null; to: string | null } | null;
+}
+
+export type Partition = PartitionByColumn | PartitionBySeed;
+
+/** `bin`: "own", or the index (from 0) of a bin of the cuts or groups to join. */
+export interface SpecialValue<Value> {
+  label: string;
+  values: Value[];
+  bin: 'own' | number;
+}
+
+export type Trend = 'any' | 'rising' | 'falling' | 'one-peak' | 'one-valley';
+
+export interface AutomaticClassing {
+  made: 'automatic';
+  fineClasses: number;
+  smallestShare: number;
+  smallestGoods: number;
+  smallestBads: number;
+  mostBins: number;
+  smallestDifference: number;
+  trend: Trend;
+}
+
+export type Classing = AutomaticClassing | { made: 'by hand' };
+
+interface CharacteristicSettings {
+  column: string;
+  /** 0 = always kept, unpenalised. */
+  penaltyMultiplier: number;
+  /** Limits on the coefficient(s), lower <= 0 <= upper, in the ln(good:bad) orientation. */
+  lower: number | null;
+  upper: number | null;
+}
+
+export interface NumericCharacteristic extends CharacteristicSettings {
+  kind: 'numeric';
+  coding: 'woe' | 'indicator';
+  /** Cuts, strictly ascending. k cuts make k + 1 bins. */
+  edges: number[];
+  closed: 'left' | 'right';
+  special: SpecialValue<number>[];
+  missing: 'own' | 'refuse' | number;
+  classing: Classing;
+}
+
+export interface CategoricalCharacteristic extends CharacteristicSettings {
+  kind: 'categorical';
+  coding: 'woe' | 'indicator';
+  groups: string[][];
+  special: SpecialValue<string>[];
+  missing: 'own' | 'refuse' | number;
+  /** Where a category that is not listed goes: WOE 0, or a bin. */
+  unseen: 'neutral' | number;
+  classing: Classing;
+}
+
+/** The value itself enters the fit: never part of a scorecard. */
+export interface LinearCharacteristic extends CharacteristicSettings {
+  kind: 'numeric';
+  coding: 'linear';
+  missing: 'refuse';
+}
+
+export type BinnedCharacteristic = NumericCharacteristic | CategoricalCharacteristic;
+export type Characteristic = BinnedCharacteristic | LinearCharacteristic;
+
+export interface WoeSettings {
+  smoothing: number;
+  when: 'zero-cell' | 'always' | 'never';
+}
+
+export type LambdaChoice = { value: number } | { grid: number[] } | { count: number; smallestRatio: number; earlyStop: boolean };
+
+export type FoldClassing = 'once' | 'woe' | 'cuts';
+
+export type Folds =
+  { count: number; seed: number; groups: string | null; classing: FoldClassing } | { column: string; classing: FoldClassing };
+
+export type PenaltyRule = 'value' | 'minimum' | 'one-standard-error';
+
+export interface FitSettings {
+  /** One mixing, or several of which cross-validation picks one. */
+  mixing: number | number[];
+  standardize: boolean;
+  lambda: LambdaChoice;
+  choose: PenaltyRule;
+  folds: Folds | null;
+  refit: 'kept' | 'all-rows' | null;
+}
+
+export interface Scaling {
+  pointsToDouble: number;
+  baseScore: number;
+  baseOdds: number;
+  intercept: 'spread' | 'base';
+  rounding: 'nearest';
+}
+
+/** Lower-closed edges of the unrounded score, or quantiles of development. */
+export type Bands = number[] | { quantiles: number };
+
+export interface Reasons {
+  baseline: 'mean' | 'cut-off' | 'largest';
+  most: number;
+  texts: Record<string, string>;
+}
+
+export interface Specification {
+  format: 'tallystone-specification';
+  formatVersion: 1;
+  title: string | null;
+  data: DataReading;
+  exclusions: Exclusion[];
+  outcome: OutcomeDefinition;
+  declined: DeclinedTreatment | null;
+  weight: { column: string } | null;
+  priorCorrection: { populationBadRate: number } | null;
+  partition: Partition;
+  characteristics: Characteristic[];
+  woe: WoeSettings;
+  fit: FitSettings;
+  recalibration: { on: 'holdOut' } | null;
+  scaling: Scaling;
+  bands: Bands;
+  psi: { smoothing: number };
+  reasons: Reasons;
+  cutOff: number | null;
+}
+
+/** One thing that is wrong, with its place. `where.path` is a JSON path such as `characteristics[2].edges`. */
+export interface SpecificationProblem {
+  code: string;
+  message: string;
+  where: { path: string };
+}
