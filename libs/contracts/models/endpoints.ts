@@ -1,5 +1,16 @@
 import { defineEndpoint } from '../endpoint';
-import { MemberCandidates, MemberParams, Model, ModelEdit, ModelList, ModelParams, ModelQuery, ModelWork, NewMember, NewModel } from './schema';
+import {
+  MemberCandidates,
+  MemberParams,
+  Model,
+  ModelEdit,
+  ModelList,
+  ModelParams,
+  ModelQuery,
+  ModelWork,
+  NewMember,
+  NewModel,
+} from './schema';
 
 export const listModels = defineEndpoint({
   method: 'GET',

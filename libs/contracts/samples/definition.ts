@@ -1,0 +1,188 @@
+import { z } from 'zod';
+import { ProblemItem } from '../problems/schema';
+import type { DataReading, Exclusion, Partition as SpecificationPartition } from '../specification/types';
+import { ColumnRole } from './columns';
+import { ColumnKind, ReadingChoices } from './reading';
+
+const value = z.string().max(1000);
+const columnName = z.string().min(1).max(1000);
+const limit = z.union([z.number(), z.iso.date()]);
+
+/** A test on one column, as in the specification: several keys must all hold. */
+export const ColumnTest = z.strictObject({
+  column: columnName,
+  in: z.array(value).max(1000).optional(),
+  notIn: z.array(value).max(1000).optional(),
+  below: limit.optional(),
+  atMost: limit.optional(),
+  above: limit.optional(),
+  atLeast: limit.optional(),
+  missing: z.boolean().optional(),
+});
+export type ColumnTest = z.infer<typeof ColumnTest>;
+
+/** An exclusion under edit: one or several tests that must all hold, or any of which is enough. */
+export const ExclusionRule = z.strictObject({
+  reason: z.string().max(300),
+  combine: z.enum(['all', 'any']),
+  tests: z.array(ColumnTest).max(20),
+});
+export type ExclusionRule = z.infer<typeof ExclusionRule>;
+
+export const SpecialCode = z.strictObject({
+  label: z.string().trim().min(1, 'Say what the code means').max(200),
+  /** Numbers for a numeric column, texts for a categorical one. */
+  values: z
+    .array(z.union([z.number(), value]))
+    .min(1)
+    .max(100),
+});
+export type SpecialCode = z.infer<typeof SpecialCode>;
+
+export const DefinedColumn = z.strictObject({
+  column: columnName,
+  kind: ColumnKind,
+  role: ColumnRole,
+  protected: z.boolean(),
+  /** The legal basis under which compliance permits a protected characteristic. */
+  citation: z.string().max(1000).nullable(),
+  special: z.array(SpecialCode).max(50),
+  /** Why it is not used, or why a flag was accepted. */
+  reason: z.string().max(1000).nullable(),
+});
+export type DefinedColumn = z.infer<typeof DefinedColumn>;
+
+export const DraftOutcome = z.strictObject({
+  good: z.array(value).max(1000),
+  bad: z.array(value).max(1000),
+  indeterminate: z.array(value).max(1000),
+  excluded: z.array(value).max(1000),
+});
+export type DraftOutcome = z.infer<typeof DraftOutcome>;
+
+/** Values of the decision column that mean "declined"; such rows have no outcome. */
+export const DraftDeclined = z.strictObject({ values: z.array(value).max(1000) });
+
+export const DraftPartition = z.discriminatedUnion('by', [
+  z.strictObject({
+    by: z.literal('column'),
+    development: z.array(value).max(1000),
+    holdOut: z.array(value).max(1000),
+    outOfTime: z.array(value).max(1000),
+  }),
+  z.strictObject({
+    by: z.literal('seed'),
+    seed: z
+      .int()
+      .min(0)
+      .max(2 ** 32 - 1),
+    /** Share of goods and of bads that becomes hold-out. */
+    holdOutShare: z.number().min(0).max(0.9),
+    /** Rows of the application date from..to (both included, null = open) are out-of-time. */
+    outOfTime: z.strictObject({ from: z.iso.date().nullable(), to: z.iso.date().nullable() }).nullable(),
+  }),
+]);
+export type DraftPartition = z.infer<typeof DraftPartition>;
+
+/**
+ * What a definition will say, while it is being worked on: may be incomplete. The columns of outcome, decision, weight, partition and
+ * application date are those with that role.
+ */
+export const DraftContent = z.strictObject({
+  columns: z.array(DefinedColumn).max(200),
+  outcome: DraftOutcome,
+  declined: DraftDeclined.nullable(),
+  exclusions: z.array(ExclusionRule).max(100),
+  partition: DraftPartition,
+});
+export type DraftContent = z.infer<typeof DraftContent>;
+
+export const Draft = z
+  .object({
+    content: DraftContent,
+    /** Counts saves; the ETag. */
+    revision: z.int(),
+    savedAt: z.string(),
+    savedBy: z.string(),
+    /** Everything that still stands in the way of confirming. */
+    problems: z.array(ProblemItem),
+  })
+  .meta({ id: 'SampleDraft' });
+export type Draft = z.infer<typeof Draft>;
+
+export const PartitionCounts = z.object({
+  rows: z.int(),
+  goods: z.int(),
+  bads: z.int(),
+  indeterminates: z.int(),
+  weight: z.number(),
+  /** bads / (goods + bads), null without either. */
+  badRate: z.number().nullable(),
+});
+export type PartitionCounts = z.infer<typeof PartitionCounts>;
+
+/** One step of the waterfall: what went out, and what is left after it. `left` of one step minus `out` of the next is its `left`. */
+export const WaterfallStep = z.object({
+  kind: z.enum(['source', 'exclusion', 'declined', 'outcome', 'unassigned', 'modelled']),
+  label: z.string(),
+  out: z.int(),
+  /** Bads among those that went out, and their share of goods and bads; null where none has an outcome. */
+  outBads: z.int(),
+  outBadRate: z.number().nullable(),
+  left: z.int(),
+  leftBadRate: z.number().nullable(),
+});
+export type WaterfallStep = z.infer<typeof WaterfallStep>;
+
+export const DefinitionCounts = z.object({
+  waterfall: z.array(WaterfallStep),
+  partitions: z.object({ development: PartitionCounts, holdOut: PartitionCounts, outOfTime: PartitionCounts }),
+  declined: z.int(),
+});
+export type DefinitionCounts = z.infer<typeof DefinitionCounts>;
+
+/** What the draft would give, or all that stands in the way. */
+export const DraftCheck = z
+  .object({ problems: z.array(ProblemItem), counts: DefinitionCounts.nullable() })
+  .meta({ id: 'DraftCheck' });
+export type DraftCheck = z.infer<typeof DraftCheck>;
+
+/** The head of a specification: reading, exclusions, outcome, partition, weight, and what each column is. Immutable. */
+export interface SampleDefinitionContent {
+  data: DataReading;
+  exclusions: Exclusion[];
+  outcome: { column: string; good: string[]; bad: string[]; indeterminate: string[]; excluded: string[] };
+  declined: { column: string; values: string[]; method: 'none'; bands: number; uplift: number } | null;
+  weight: { column: string } | null;
+  partition: SpecificationPartition;
+  columns: DefinedColumn[];
+}
+
+export const Definition = z
+  .object({
+    id: z.uuid(),
+    sampleId: z.uuid(),
+    modelId: z.uuid(),
+    /** 1, 2, ... within the sample. */
+    number: z.int(),
+    content: z.custom<SampleDefinitionContent>((content) => typeof content === 'object' && content !== null),
+    counts: DefinitionCounts,
+    /** SHA-256 over the RFC 8785 canonical JSON of the content. */
+    sha256: z.string(),
+    createdAt: z.string(),
+    createdBy: z.string(),
+  })
+  .meta({ id: 'SampleDefinition' });
+export type Definition = z.infer<typeof Definition>;
+
+export const DefinitionSummary = Definition.omit({ content: true }).meta({ id: 'SampleDefinitionSummary' });
+export type DefinitionSummary = z.infer<typeof DefinitionSummary>;
+export const DefinitionList = z.object({ definitions: z.array(DefinitionSummary) }).meta({ id: 'SampleDefinitionList' });
+export type DefinitionList = z.infer<typeof DefinitionList>;
+
+/** Confirms the draft as it was last read. */
+export const ConfirmDraft = z.strictObject({ revision: z.int() });
+/** Result of the run "confirm sample" (Run.result). */
+export const ConfirmationResult = z.object({ definitionId: z.uuid(), number: z.int() });
+
+export const ConfirmReading = ReadingChoices;

@@ -1,0 +1,135 @@
+import { defineEndpoint } from '../endpoint';
+import { Run } from '../runs/schema';
+import { ColumnList } from './columns';
+import { ConfirmDraft, ConfirmReading, Definition, DefinitionList, Draft, DraftCheck, DraftContent } from './definition';
+import { Preview, PreviewRequest } from './reading';
+import { DefinitionParams, Sample, SampleList, SampleListParams, SampleParams, UploadParams } from './schema';
+
+const ofModel = '/api/models/:modelId' as const;
+const ofSample = `${ofModel}/samples/:sampleId` as const;
+
+export const listSamples = defineEndpoint({
+  method: 'GET',
+  path: `${ofModel}/samples`,
+  summary: 'Samples of a model and own unfinished uploads',
+  params: SampleListParams,
+  response: SampleList,
+});
+
+/** Resumable upload: the tus protocol 1.0.0 (creation, termination). The answer to the last PATCH carries `Sample-Id`. */
+export const beginUpload = defineEndpoint({
+  method: 'POST',
+  path: `${ofModel}/uploads`,
+  summary: 'Begin to send a file (tus creation; Upload-Metadata: filename)',
+  params: SampleListParams,
+  body: 'bytes',
+  response: 'nothing',
+  status: 201,
+});
+export const askUpload = defineEndpoint({
+  method: 'HEAD',
+  path: `${ofModel}/uploads/:uploadId`,
+  summary: 'How much of a file has arrived (tus)',
+  params: UploadParams,
+  response: 'nothing',
+  status: 200,
+});
+export const sendUpload = defineEndpoint({
+  method: 'PATCH',
+  path: `${ofModel}/uploads/:uploadId`,
+  summary: 'Send on from the offset (tus)',
+  params: UploadParams,
+  body: 'bytes',
+  response: 'nothing',
+});
+export const dropUpload = defineEndpoint({
+  method: 'DELETE',
+  path: `${ofModel}/uploads/:uploadId`,
+  summary: 'Drop an unfinished upload (tus termination)',
+  params: UploadParams,
+  response: 'nothing',
+});
+
+export const readSample = defineEndpoint({
+  method: 'GET',
+  path: ofSample,
+  summary: 'One sample',
+  params: SampleParams,
+  response: Sample,
+});
+export const discardSample = defineEndpoint({
+  method: 'DELETE',
+  path: ofSample,
+  summary: 'Discard a sample on which nothing rests yet: file, columns and draft',
+  params: SampleParams,
+  response: 'nothing',
+});
+export const previewReading = defineEndpoint({
+  method: 'POST',
+  path: `${ofSample}/preview`,
+  summary: 'The first rows and every doubtful line under given or judged reading choices',
+  params: SampleParams,
+  body: PreviewRequest,
+  response: Preview,
+});
+export const confirmReading = defineEndpoint({
+  method: 'POST',
+  path: `${ofSample}/readings`,
+  summary: 'Read the file with these choices, as a run (Idempotency-Key)',
+  params: SampleParams,
+  body: ConfirmReading,
+  response: Run,
+  status: 202,
+});
+export const listColumns = defineEndpoint({
+  method: 'GET',
+  path: `${ofSample}/columns`,
+  summary: 'The quality of each column',
+  params: SampleParams,
+  response: ColumnList,
+});
+export const readDraft = defineEndpoint({
+  method: 'GET',
+  path: `${ofSample}/draft`,
+  summary: 'The definition under edit, with the entity tag that a save needs',
+  params: SampleParams,
+  response: Draft,
+});
+export const saveDraft = defineEndpoint({
+  method: 'PUT',
+  path: `${ofSample}/draft`,
+  summary: 'Save the definition under edit (If-Match)',
+  params: SampleParams,
+  body: DraftContent,
+  response: Draft,
+});
+export const checkDraft = defineEndpoint({
+  method: 'POST',
+  path: `${ofSample}/draft/check`,
+  summary: 'What the saved draft would give: the waterfall, or all that stands in the way',
+  params: SampleParams,
+  response: DraftCheck,
+});
+export const confirmDraft = defineEndpoint({
+  method: 'POST',
+  path: `${ofSample}/definitions`,
+  summary: 'Confirm the draft: an immutable definition with its counts, as a run (Idempotency-Key)',
+  params: SampleParams,
+  body: ConfirmDraft,
+  response: Run,
+  status: 202,
+});
+export const listDefinitions = defineEndpoint({
+  method: 'GET',
+  path: `${ofSample}/definitions`,
+  summary: 'Confirmed definitions, latest first',
+  params: SampleParams,
+  response: DefinitionList,
+});
+export const readDefinition = defineEndpoint({
+  method: 'GET',
+  path: `${ofSample}/definitions/:definitionId`,
+  summary: 'One confirmed definition',
+  params: DefinitionParams,
+  response: Definition,
+});

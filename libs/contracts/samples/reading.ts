@@ -1,0 +1,58 @@
+import { z } from 'zod';
+import { ProblemItem } from '../problems/schema';
+
+/** How the file is read: `data` of the specification without the fingerprint, which belongs to the file. */
+export const ReadingChoices = z
+  .strictObject({
+    delimiter: z.enum([',', ';', '\t', '|']),
+    encoding: z.enum(['utf-8', 'utf-16le', 'utf-16be', 'windows-1252']),
+    decimal: z.enum(['.', ',']),
+    thousands: z.enum(['.', ',', ' ', '\u00a0', '\u202f', "'"]).nullable(),
+    trim: z.boolean(),
+    /** Texts that mean "missing" in every column. */
+    missing: z.array(z.string().max(100)).max(50),
+  })
+  .meta({ id: 'ReadingChoices' });
+export type ReadingChoices = z.infer<typeof ReadingChoices>;
+
+/** What is left out is judged from the file. */
+export const PreviewRequest = ReadingChoices.partial();
+export type PreviewRequest = z.infer<typeof PreviewRequest>;
+
+export const columnKinds = ['numeric', 'categorical', 'date'] as const;
+export const ColumnKind = z.enum(columnKinds);
+export type ColumnKind = z.infer<typeof ColumnKind>;
+
+/** The first rows as they would be read, with everything that is doubtful, before anything is decided. */
+export const Preview = z
+  .object({
+    choices: ReadingChoices,
+    /** Why each choice was proposed, one sentence each; empty for what the person chose. */
+    reasons: z.array(
+      z.object({ choice: z.enum(['delimiter', 'encoding', 'decimal', 'thousands', 'trim', 'missing']), reason: z.string() }),
+    ),
+    header: z.array(z.string()),
+    rows: z.array(z.object({ record: z.int(), line: z.int(), cells: z.array(z.string()) })),
+    columns: z.array(
+      z.object({
+        column: z.string(),
+        kind: ColumnKind,
+        /** What speaks against the kind, or null. */
+        against: z.string().nullable(),
+      }),
+    ),
+    /** The whole file has been looked at, or its beginning only. */
+    looked: z.object({ records: z.int(), bytes: z.number(), whole: z.boolean() }),
+    /** What must be settled before the file can be read. */
+    problems: z.array(ProblemItem),
+    /** What a careful reader looks at, and may accept. */
+    warnings: z.array(ProblemItem),
+  })
+  .meta({ id: 'Preview' });
+export type Preview = z.infer<typeof Preview>;
+
+/** Result of the run "read sample" (Run.result). */
+export const ReadingResult = z.object({ rows: z.int(), columns: z.int(), flags: z.int() });
+export type ReadingResult = z.infer<typeof ReadingResult>;
+/** Phases of that run, in order. */
+export const readingPhases = ['receiving', 'reading', 'profiling', 'storing'] as const;

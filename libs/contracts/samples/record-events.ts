@@ -1,0 +1,23 @@
+import { z } from 'zod';
+import { recordEvent } from '../record/event';
+import { ReadingChoices } from './reading';
+
+const File = z.strictObject({ fileName: z.string(), size: z.number(), sha256: z.string() });
+
+export const sampleEvents = [
+  recordEvent('sample.received', 'sample', { after: File }),
+  recordEvent('sample.read', 'sample', {
+    after: z.strictObject({ rows: z.int(), columns: z.int(), reading: ReadingChoices, sha256: z.string() }),
+  }),
+  recordEvent('sample.discarded', 'sample', { before: File }),
+  recordEvent('sample.defined', 'sample', {
+    after: z.strictObject({
+      definitionId: z.uuid(),
+      number: z.int(),
+      sha256: z.string(),
+      development: z.int(),
+      holdOut: z.int(),
+      outOfTime: z.int(),
+    }),
+  }),
+] as const;
