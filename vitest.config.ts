@@ -13,7 +13,7 @@ export default defineConfig({
     ],
   },
   test: {
-    include: ['libs/**/*.spec.ts', 'server/**/*.spec.ts', 'data-demo/**/*.spec.ts', 'tests/{reference,api,faults}/**/*.spec.ts'],
+    include: ['libs/**/*.spec.ts', 'server/**/*.spec.ts', 'data-demo/**/*.spec.ts', 'tests/{reference,api,faults,support}/**/*.spec.ts'],
     passWithNoTests: false,
     testTimeout: 30_000,
     hookTimeout: 60_000,

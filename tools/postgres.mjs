@@ -421,6 +421,34 @@ async function ensureRoles(bin, secrets, test) {
   if (!done.ok) throw new SetupProblem(`PostgreSQL runs on port ${secrets.port}, but its roles could not be set up: ${done.reason}`);
 }
 
+/** Runs `work` while no other process starts or makes the same cluster; a lock whose holder is gone is taken over. */
+async function oneAtATime(lock, work) {
+  const end = Date.now() + 180_000;
+  for (;;) {
+    try {
+      fs.writeFileSync(lock, String(process.pid), { flag: 'wx', mode: 0o600 });
+      break;
+    } catch (error) {
+      if (error.code !== 'EEXIST') throw error;
+    }
+    let holder = 0;
+    try {
+      holder = Number(fs.readFileSync(lock, 'utf8'));
+      // Empty for the instant between its creation and the writing of the number.
+      if (holder === 0 && Date.now() - fs.statSync(lock).mtimeMs < 2_000) holder = process.pid;
+    } catch {
+      continue;
+    }
+    if (!alive(holder) || Date.now() > end) fs.rmSync(lock, { force: true });
+    else await sleep(50);
+  }
+  try {
+    return await work();
+  } finally {
+    fs.rmSync(lock, { force: true });
+  }
+}
+
 /**
  * Starts (or finds running) the PostgreSQL of a data folder and makes sure of its roles and database.
  *
@@ -432,11 +460,14 @@ async function ensureRoles(bin, secrets, test) {
  */
 export async function startPostgres({ data, test = false, port, say = () => {} }) {
   const at = places(data);
+  // Programs first: installing them is what makes the account that the folder has to be passable for.
   const bin = programs(at.cluster, say);
-  const ids = account();
-
   makeDataFolder(at.folder, true);
+  return oneAtATime(path.join(at.folder, 'starting.lock'), () => startAlone(at, bin, { test, port, say }));
+}
 
+async function startAlone(at, bin, { test, port, say }) {
+  const ids = account();
   let secrets = readSecrets(at.secrets);
   const exists = fs.existsSync(path.join(at.cluster, 'PG_VERSION'));
   if (exists && !secrets) {

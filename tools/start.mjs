@@ -5,7 +5,7 @@
  * Installs the npm packages, installs (as root) and starts PostgreSQL, migrates, makes the demo, builds what changed, and
  * serves web and one worker on loopback until Ctrl-C. Environment (docs/operations.md has the whole list):
  *
- *   PORT                                 port of the web server (3000)
+ *   PORT                                 port of the web server (4820)
  *   TALLYSTONE_DATA                      data folder: database, keys, logs (.tallystone)
  *   DATABASE_URL + DATABASE_OWNER_URL    an existing PostgreSQL server instead of an own one
  *   TALLYSTONE_DEMO=off                  no demo data and no demo people
@@ -31,7 +31,7 @@ const began = Date.now();
 // --- What is asked for ------------------------------------------------------------------------------------------------
 
 function askedPort() {
-  const text = process.env.PORT || '3000';
+  const text = process.env.PORT || '4820';
   const port = Number(text);
   if (!/^\d+$/.test(text) || port < 1 || port > 65_535) throw new SetupProblem(`PORT is "${text}"; it must be a number from 1 to 65535.`);
   return port;
@@ -58,7 +58,7 @@ function portIsFree(port) {
 
 async function checkPort(port) {
   const free = await portIsFree(port);
-  if (free === 'EACCES') throw new SetupProblem(`Port ${port} may not be used by this account. Choose another one: PORT=3000 npm start`);
+  if (free === 'EACCES') throw new SetupProblem(`Port ${port} may not be used by this account. Choose another one: PORT=4820 npm start`);
   if (free !== true) throw new SetupProblem(`Port ${port} is in use by another program. Choose another one: PORT=${port + 1} npm start`);
 }
 
@@ -330,6 +330,7 @@ async function main() {
     NODE_ENV: 'production',
     HOST,
     PORT: String(port),
+    TALLYSTONE_DATA: state.data,
     DATABASE_URL: database.appUrl,
     TALLYSTONE_KEYS: keys,
     TALLYSTONE_DEMO: demo ? '1' : '',
