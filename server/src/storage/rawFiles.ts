@@ -1,0 +1,81 @@
+import { createCipheriv, createDecipheriv, randomBytes } from 'node:crypto';
+import { promisify } from 'node:util';
+import { deflateRaw, inflateRaw } from 'node:zlib';
+import type { Sequelize, Transaction } from 'sequelize';
+import { rows } from '../database/sql';
+
+/** A raw file is kept in pieces of at most this many bytes: what is sent again when a connection breaks. */
+export const chunkBytes = 8 * 1024 * 1024;
+
+const compress = promisify(deflateRaw);
+const expand = promisify(inflateRaw);
+const nonceBytes = 12;
+const tagBytes = 16;
+
+/** Binds a chunk to its file and place, so that chunks cannot be swapped. */
+const place = (fileId: string, sequence: number): Buffer => Buffer.from(`${fileId}:${sequence}`, 'utf8');
+
+/**
+ * Deflates (RFC 1951) and encrypts one chunk: AES-256-GCM (NIST SP 800-38D) with a random nonce of 96 bits. The result is nonce, tag,
+ * ciphertext.
+ */
+export async function sealChunk(key: Buffer, fileId: string, sequence: number, bytes: Buffer): Promise<Buffer> {
+  const nonce = randomBytes(nonceBytes);
+  const cipher = createCipheriv('aes-256-gcm', key, nonce);
+  cipher.setAAD(place(fileId, sequence));
+  const sealed = cipher.update(await compress(bytes, { level: 3 }));
+  const last = cipher.final();
+  return Buffer.concat([nonce, cipher.getAuthTag(), sealed, last]);
+}
+
+/** @throws when the chunk was altered, belongs elsewhere or was sealed with another key */
+export async function openChunk(key: Buffer, fileId: string, sequence: number, content: Buffer): Promise<Buffer> {
+  const decipher = createDecipheriv('aes-256-gcm', key, content.subarray(0, nonceBytes), { authTagLength: tagBytes });
+  decipher.setAAD(place(fileId, sequence));
+  decipher.setAuthTag(content.subarray(nonceBytes, nonceBytes + tagBytes));
+  const opened = Buffer.concat([decipher.update(content.subarray(nonceBytes + tagBytes)), decipher.final()]);
+  return expand(opened);
+}
+
+/** Appends one chunk; the caller moves the file's offset in the same transaction. */
+export async function storeChunk(
+  sequelize: Sequelize,
+  tx: Transaction,
+  chunk: { fileId: string; sequence: number; start: number; length: number; content: Buffer },
+): Promise<void> {
+  await sequelize.query('INSERT INTO raw_chunks (file_id, sequence, start, length, content) VALUES ($1, $2, $3, $4, $5)', {
+    bind: [chunk.fileId, chunk.sequence, chunk.start, chunk.length, chunk.content],
+    transaction: tx,
+  });
+}
+
+/** The chunks of a file in order, opened, one in memory at a time. */
+export async function* readChunks(sequelize: Sequelize, key: Buffer, fileId: string, signal?: AbortSignal): AsyncGenerator<Buffer> {
+  for (let sequence = 0; ; sequence++) {
+    signal?.throwIfAborted();
+    const [found] = await rows<{ content: Buffer }>(sequelize, 'SELECT content FROM raw_chunks WHERE file_id = $1 AND sequence = $2', [fileId, sequence]);
+    if (!found) return;
+    yield await openChunk(key, fileId, sequence, found.content);
+  }
+}
+
+/**
+ * The bytes of a sample's raw file, as they were sent. For reading, re-reading and replication only.
+ *
+ * @example
+ * for await (const bytes of readRawFile(sequelize, config.keys.rawFiles, sampleId)) hash.update(bytes);
+ */
+export async function* readRawFile(sequelize: Sequelize, key: Buffer, sampleId: string, signal?: AbortSignal): AsyncGenerator<Buffer> {
+  const [sample] = await rows<{ rawFileId: string; size: string }>(
+    sequelize,
+    'SELECT raw_file_id AS "rawFileId", size FROM samples WHERE id = $1',
+    [sampleId],
+  );
+  if (!sample) throw new Error(`There is no sample ${sampleId}`);
+  let bytes = 0;
+  for await (const chunk of readChunks(sequelize, key, sample.rawFileId, signal)) {
+    bytes += chunk.length;
+    yield chunk;
+  }
+  if (bytes !== Number(sample.size)) throw new Error(`The raw file of sample ${sampleId} has ${bytes} of ${sample.size} bytes`);
+}
