@@ -1,0 +1,4 @@
+import { Component } from '@angular/core';
+
+@Component({ selector: 'ts-invitation-page', template: '' })
+export class InvitationPage {}

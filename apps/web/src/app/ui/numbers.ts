@@ -1,0 +1,98 @@
+/**
+ * How numbers are written, everywhere: thousands parted by a narrow no-break space, the minus sign U+2212, an en dash where there is no
+ * value (a dash is not 0). Each function takes null, undefined and NaN.
+ */
+export const MINUS = '\u2212';
+export const THIN_SPACE = '\u202F';
+export const DASH = '\u2013';
+
+type Maybe = number | null | undefined;
+
+/** Fixed decimals: fixed(1234.5, 1) = "1 234.5", fixed(-0.224, 2) = "−0.22". A value that rounds to zero carries no minus. */
+export function fixed(value: Maybe, decimals: number): string {
+  if (value === null || value === undefined || Number.isNaN(value)) return DASH;
+  if (!Number.isFinite(value)) return value > 0 ? '\u221E' : `${MINUS}\u221E`;
+  const text = Math.abs(value).toFixed(decimals);
+  const [whole, fraction] = text.split('.');
+  const grouped = whole.length > 4 || whole.length === 4 ? whole.replace(/\B(?=(\d{3})+(?!\d))/g, THIN_SPACE) : whole;
+  const negative = value < 0 && /[1-9]/.test(text);
+  return (negative ? MINUS : '') + grouped + (fraction === undefined ? '' : `.${fraction}`);
+}
+
+/** AUC, Gini, KS, Brier score: three decimals. */
+export const metric = (value: Maybe): string => fixed(value, 3);
+/** WOE, IV, log odds: two decimals. */
+export const woe = (value: Maybe): string => fixed(value, 2);
+/** Points: whole. */
+export const points = (value: Maybe): string => fixed(value, 0);
+/** Rows, goods, bads: whole, thousands parted. */
+export const count = (value: Maybe): string => fixed(value, 0);
+
+/** A share of 0 to 1 in per cent: share(0.141) = "14.1 %". */
+export function share(value: Maybe, decimals = 1): string {
+  const text = fixed(value === null || value === undefined ? value : value * 100, decimals);
+  return text === DASH ? DASH : `${text}${THIN_SPACE}%`;
+}
+
+/** Significant digits, for penalties and p-values: significant(0.0095123, 2) = "0.0095", significant(4.2e-13, 1) = "4e−13". */
+export function significant(value: Maybe, digits = 3): string {
+  if (value === null || value === undefined || Number.isNaN(value)) return DASH;
+  if (value === 0) return '0';
+  const size = Math.abs(value);
+  if (!Number.isFinite(value)) return fixed(value, 0);
+  if (size < 1e-5 || size >= 1e9) return value.toExponential(digits - 1).replace('e+', 'e').replaceAll('-', MINUS);
+  const decimals = Math.max(0, digits - 1 - Math.floor(Math.log10(size)));
+  return fixed(value, Math.min(decimals, 20));
+}
+
+/** A difference with its sign: signed(0.0004, 4) = "+0.0004". */
+export function signed(value: Maybe, decimals: number): string {
+  const text = fixed(value, decimals);
+  return text !== DASH && (value as number) > 0 && /[1-9\u221E]/.test(text) ? `+${text}` : text;
+}
+
+/** Bytes for people, in decimal units: bytes(107_000_000) = "107 MB". */
+export function bytes(value: Maybe): string {
+  if (value === null || value === undefined || Number.isNaN(value)) return DASH;
+  const units = ['bytes', 'kB', 'MB', 'GB', 'TB'];
+  let size = value;
+  let unit = 0;
+  while (size >= 1000 && unit < units.length - 1) {
+    size /= 1000;
+    unit += 1;
+  }
+  return `${fixed(size, unit === 0 || size >= 100 ? 0 : 1)}${THIN_SPACE}${units[unit]}`;
+}
+
+/** Time for people: duration(75) = "1 min 15 s". */
+export function duration(seconds: Maybe): string {
+  if (seconds === null || seconds === undefined || Number.isNaN(seconds)) return DASH;
+  const whole = Math.max(0, Math.round(seconds));
+  if (whole < 60) return `${whole}${THIN_SPACE}s`;
+  if (whole < 3600) return `${Math.floor(whole / 60)}${THIN_SPACE}min ${whole % 60}${THIN_SPACE}s`;
+  return `${Math.floor(whole / 3600)}${THIN_SPACE}h ${Math.floor((whole % 3600) / 60)}${THIN_SPACE}min`;
+}
+
+const dateFormat = new Intl.DateTimeFormat('en-GB', { day: 'numeric', month: 'long', year: 'numeric' });
+const momentFormat = new Intl.DateTimeFormat('en-GB', {
+  day: 'numeric',
+  month: 'short',
+  year: 'numeric',
+  hour: '2-digit',
+  minute: '2-digit',
+});
+
+/** "3 November 2026"; the day in this browser's time zone. */
+export function day(iso: string | null | undefined): string {
+  return iso ? dateFormat.format(new Date(iso)) : DASH;
+}
+
+/** "3 Nov 2026, 14:05"; the time in this browser's time zone. */
+export function moment(iso: string | null | undefined): string {
+  return iso ? momentFormat.format(new Date(iso)) : DASH;
+}
+
+/** "1 characteristic", "8 characteristics". */
+export function plural(n: number, one: string, many = `${one}s`): string {
+  return `${count(n)} ${n === 1 ? one : many}`;
+}
