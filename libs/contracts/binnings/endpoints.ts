@@ -1,0 +1,96 @@
+import { defineEndpoint } from '../endpoint';
+import {
+  Binning,
+  BinningList,
+  CharacteristicDetail,
+  CharacteristicList,
+  EditHistory,
+  NewBinning,
+  NewFineEdge,
+  Reclass,
+  SaveBins,
+  SetInclusion,
+  ofBinning,
+  ofCharacteristic,
+  ofModel,
+} from './schema';
+
+const binning = '/api/binnings/:binningId' as const;
+const characteristic = `${binning}/characteristics/:characteristicId` as const;
+
+export const listBinnings = defineEndpoint({
+  method: 'GET',
+  path: '/api/models/:modelId/binnings',
+  summary: 'Binnings of a model, latest first',
+  params: ofModel,
+  response: BinningList,
+});
+export const startBinning = defineEndpoint({
+  method: 'POST',
+  path: '/api/models/:modelId/binnings',
+  summary: 'Class every characteristic of a confirmed sample automatically (Idempotency-Key); the binning and its run',
+  params: ofModel,
+  body: NewBinning,
+  response: Binning,
+  status: 201,
+});
+export const readBinning = defineEndpoint({
+  method: 'GET',
+  path: binning,
+  summary: 'One binning',
+  params: ofBinning,
+  response: Binning,
+});
+export const listCharacteristics = defineEndpoint({
+  method: 'GET',
+  path: `${binning}/characteristics`,
+  summary: 'The characteristics of a binning with what their bins say',
+  params: ofBinning,
+  response: CharacteristicList,
+});
+export const reclassCharacteristics = defineEndpoint({
+  method: 'POST',
+  path: `${binning}/reclassings`,
+  summary: 'Class characteristics anew under constraints, from their fine classes',
+  params: ofBinning,
+  body: Reclass,
+  response: CharacteristicList,
+});
+export const setInclusion = defineEndpoint({
+  method: 'POST',
+  path: `${binning}/inclusions`,
+  summary: 'Leave characteristics out with a reason, or take them in again',
+  params: ofBinning,
+  body: SetInclusion,
+  response: CharacteristicList,
+});
+export const readCharacteristic = defineEndpoint({
+  method: 'GET',
+  path: characteristic,
+  summary: 'One characteristic with its fine classes and the entity tag that a save needs',
+  params: ofCharacteristic,
+  response: CharacteristicDetail,
+});
+export const saveCharacteristic = defineEndpoint({
+  method: 'PUT',
+  path: characteristic,
+  summary: 'Save the bins of a characteristic and the edits that made them (If-Match)',
+  params: ofCharacteristic,
+  body: SaveBins,
+  response: CharacteristicDetail,
+});
+export const splitFineClass = defineEndpoint({
+  method: 'POST',
+  path: `${characteristic}/fine-edges`,
+  summary: 'Split a fine class at a value, from the stored column, so that a cut can lie there',
+  params: ofCharacteristic,
+  body: NewFineEdge,
+  response: CharacteristicDetail,
+});
+export const listEdits = defineEndpoint({
+  method: 'GET',
+  path: `${characteristic}/edits`,
+  summary: 'Every manual edit of a characteristic, undone ones included, latest first',
+  params: ofCharacteristic,
+  response: EditHistory,
+});

@@ -1,0 +1,39 @@
+import { z } from 'zod';
+import { recordEvent } from '../record/event';
+import { Bins, Constraints } from './bins';
+import { EditKind } from './edits';
+
+const column = z.string();
+
+export const binningEvents = [
+  recordEvent('binning.started', 'binning', { after: z.strictObject({ name: z.string(), definitionId: z.uuid(), constraints: Constraints }) }),
+  recordEvent('binning.classed', 'binning', { after: z.strictObject({ characteristics: z.int() }) }),
+  recordEvent('binning.edited', 'binning-characteristic', {
+    before: Bins,
+    after: Bins,
+    detail: z.strictObject({ column, edit: z.uuid(), kind: EditKind, what: z.string() }),
+    reason: z.string().optional(),
+  }),
+  recordEvent('binning.edit-undone', 'binning-characteristic', {
+    before: Bins,
+    after: Bins,
+    detail: z.strictObject({ column, edit: z.uuid(), what: z.string() }),
+  }),
+  recordEvent('binning.edit-redone', 'binning-characteristic', {
+    before: Bins,
+    after: Bins,
+    detail: z.strictObject({ column, edit: z.uuid(), what: z.string() }),
+  }),
+  recordEvent('binning.reason-given', 'binning-characteristic', {
+    detail: z.strictObject({ column, edit: z.uuid(), what: z.string() }),
+    reason: z.string(),
+  }),
+  recordEvent('binning.reclassed', 'binning-characteristic', {
+    before: Bins,
+    after: Bins,
+    detail: z.strictObject({ column, constraints: Constraints, editsDropped: z.int() }),
+    reason: z.string().optional(),
+  }),
+  recordEvent('binning.left-out', 'binning-characteristic', { detail: z.strictObject({ column }), reason: z.string() }),
+  recordEvent('binning.taken-in', 'binning-characteristic', { detail: z.strictObject({ column }), reason: z.string().optional() }),
+] as const;

@@ -1,0 +1,171 @@
+import { z } from 'zod';
+import type { BinnedCharacteristic } from '../specification/types';
+import { OutOfTimeState } from '../out-of-time/schema';
+import { binningAbilities, binningListAbilities } from './abilities';
+import { Bins, Constraints, Fine } from './bins';
+import { Edit, SentEdit } from './edits';
+
+const finite = z.number();
+
+export const binningStates = ['queued', 'classing', 'ready', 'failed', 'cancelled'] as const;
+export const BinningState = z.enum(binningStates);
+export type BinningState = z.infer<typeof BinningState>;
+
+const name = z.string().trim().min(1, 'Give the binning a name').max(120);
+
+export const NewBinning = z.strictObject({ definitionId: z.uuid(), name, constraints: Constraints.default(() => Constraints.parse({})) });
+export type NewBinning = z.input<typeof NewBinning>;
+
+export const BinningSummary = z.object({
+  id: z.uuid(),
+  modelId: z.uuid(),
+  /** 1, 2, 3 … within the model. */
+  number: z.int(),
+  name: z.string(),
+  state: BinningState,
+  runId: z.uuid().nullable(),
+  definitionId: z.uuid(),
+  sampleId: z.uuid(),
+  /** Which definition of which sample, in words. */
+  sample: z.string(),
+  characteristics: z.int(),
+  included: z.int(),
+  /** Manual edits in effect, and how many of them have no reason yet. */
+  edits: z.int(),
+  editsWithoutReason: z.int(),
+  createdBy: z.string(),
+  createdAt: z.string(),
+});
+export type BinningSummary = z.infer<typeof BinningSummary>;
+
+export const BinningList = z
+  .object({ binnings: z.array(BinningSummary), abilities: z.array(z.enum(binningListAbilities)) })
+  .meta({ id: 'BinningList' });
+export type BinningList = z.infer<typeof BinningList>;
+
+export const Binning = BinningSummary.extend({
+  constraints: Constraints,
+  outOfTime: OutOfTimeState,
+  /** Columns with the role of a characteristic that no binning takes, with the reason. */
+  barred: z.array(z.object({ column: z.string(), reason: z.string() })),
+  /** Why the run ended without bins. */
+  problem: z.string().nullable(),
+  abilities: z.array(z.enum(binningAbilities)),
+}).meta({ id: 'Binning' });
+export type Binning = z.infer<typeof Binning>;
+
+export const warningCodes = [
+  'small-bin',
+  'zero-cell',
+  'not-monotone',
+  'reversed-in-hold-out',
+  'reversed-out-of-time',
+  'high-information-value',
+  'one-bin',
+] as const;
+export const Warning = z.object({
+  code: z.enum(warningCodes),
+  /** One sentence. */
+  message: z.string(),
+  /** Indices of the bins concerned. */
+  bins: z.array(z.int()),
+});
+export type Warning = z.infer<typeof Warning>;
+
+export const trends = ['rising', 'falling', 'one-peak', 'one-valley', 'mixed', 'none'] as const;
+
+/** Usual reading of IV: under 0.02 none, to 0.1 weak, to 0.3 medium, above strong (lender policy; see the note beside the list). */
+export const ivReadings = ['none', 'weak', 'medium', 'strong'] as const;
+
+const summary = {
+  id: z.uuid(),
+  column: z.string(),
+  kind: z.enum(['numeric', 'categorical']),
+  /** Place in the sample's order of columns. */
+  position: z.int(),
+  included: z.boolean(),
+  /** Why it is left out; empty while included. */
+  leftOutReason: z.string(),
+  informationValue: finite,
+  reading: z.enum(ivReadings),
+  gini: finite,
+  /** Of development rows. */
+  missingShare: finite,
+  /** Bins with a code of their own, special and missing ones included. */
+  bins: z.int(),
+  /** Of WOE along the value axis; "none" for a categorical characteristic or one bin. */
+  trend: z.enum(trends),
+  warnings: z.array(Warning),
+  edits: z.int(),
+  editsWithoutReason: z.int(),
+  revision: z.int(),
+};
+
+export const CharacteristicSummary = z.object(summary);
+export type CharacteristicSummary = z.infer<typeof CharacteristicSummary>;
+
+export const CharacteristicList = z
+  .object({
+    characteristics: z.array(CharacteristicSummary),
+    /** One sentence that says what they say. */
+    finding: z.string(),
+  })
+  .meta({ id: 'CharacteristicList' });
+export type CharacteristicList = z.infer<typeof CharacteristicList>;
+
+export const CharacteristicDetail = z
+  .object({
+    ...summary,
+    /** Exactly one entry of a specification's `characteristics`. */
+    definition: z.custom<BinnedCharacteristic>((value) => typeof value === 'object' && value !== null),
+    bins: z.int(),
+    current: Bins,
+    automatic: Bins,
+    /** The constraints under which it was classed last. */
+    constraints: Constraints,
+    fine: Fine,
+    /** Manual edits in effect, oldest first: `automatic`, edited by these in turn, is `current`. */
+    editList: z.array(Edit),
+    changedBy: z.string(),
+    changedAt: z.string(),
+    abilities: z.array(z.enum(['edit'])),
+  })
+  .meta({ id: 'BinningCharacteristic' });
+export type CharacteristicDetail = z.infer<typeof CharacteristicDetail>;
+
+/** A save of the bench: the bins as they are now and the edits that lead from the automatic bins to them. */
+export const SaveBins = z.strictObject({ bins: Bins, edits: z.array(SentEdit).max(500) });
+export type SaveBins = z.infer<typeof SaveBins>;
+
+/** A cut that lies on no fine class: the fine class is split there, from the stored column. */
+export const NewFineEdge = z.strictObject({ edge: finite });
+export type NewFineEdge = z.infer<typeof NewFineEdge>;
+
+const chosen = z
+  .array(z.strictObject({ id: z.uuid(), revision: z.int() }))
+  .min(1, 'Choose at least one characteristic')
+  .max(200);
+
+/** Classes several characteristics anew; their manual edits are no longer in effect, so it says why where there are any. */
+export const Reclass = z.strictObject({
+  characteristics: chosen,
+  /** Fine classes stay as they are. */
+  constraints: Constraints.omit({ fineClasses: true }),
+  reason: z.string().trim().max(1000).default(''),
+});
+export type Reclass = z.input<typeof Reclass>;
+
+export const SetInclusion = z
+  .strictObject({ characteristics: chosen, included: z.boolean(), reason: z.string().trim().max(1000).default('') })
+  .refine((sent) => sent.included || sent.reason.length > 0, { path: ['reason'], message: 'Say why it is left out' });
+export type SetInclusion = z.input<typeof SetInclusion>;
+
+export const EditHistory = z.object({ edits: z.array(Edit) }).meta({ id: 'BinningEditHistory' });
+export type EditHistory = z.infer<typeof EditHistory>;
+
+export const ofModel = z.strictObject({ modelId: z.uuid() });
+export const ofBinning = z.strictObject({ binningId: z.uuid() });
+export const ofCharacteristic = z.strictObject({ binningId: z.uuid(), characteristicId: z.uuid() });
+
+/** Result of the run "class characteristics" (Run.result). */
+export const ClassingResult = z.object({ binningId: z.uuid(), characteristics: z.int() });

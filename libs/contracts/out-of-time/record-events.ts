@@ -1,0 +1,10 @@
+import { z } from 'zod';
+import { recordEvent } from '../record/event';
+
+export const outOfTimeEvents = [
+  recordEvent('out-of-time.opened', 'sample-definition', {
+    /** How often it had been opened before. */
+    detail: z.strictObject({ earlier: z.int() }),
+    reason: z.string(),
+  }),
+] as const;
