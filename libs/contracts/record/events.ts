@@ -1,0 +1,13 @@
+import { z } from 'zod';
+import { peopleEvents } from '../people/record-events';
+import { runEvents } from '../runs/record-events';
+import { sessionEvents } from '../session/record-events';
+import { recordEvents } from './record-events';
+
+/**
+ * Every act the record knows. An entity adds its list here: nothing else is accepted by `appendRecord`.
+ */
+export const RecordEvent = z.discriminatedUnion('action', [...sessionEvents, ...peopleEvents, ...runEvents, ...recordEvents]);
+export type RecordEvent = z.input<typeof RecordEvent>;
+
+export const recordActions: readonly string[] = RecordEvent.options.map((option) => option.shape.action.value);

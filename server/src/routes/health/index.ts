@@ -1,0 +1,36 @@
+import { live, openApi, ready } from '@tallystone/contracts/health/endpoints';
+import { rows } from '../../database/sql';
+import { migrations } from '../../migrations/index';
+import type { Route } from '../http/route';
+import { defineRoute } from '../http/route';
+import { describeApi } from './open-api';
+
+/** Liveness, readiness and the description of the API. `described` gives every route, this one too. */
+export function healthRoutes(described: () => readonly Route[]): Route[] {
+  let description: Record<string, unknown> | null = null;
+  return [
+    defineRoute(live, { access: 'anyone', act: () => ({ status: 'ok' as const }) }),
+    defineRoute(ready, {
+      access: 'anyone',
+      async act({ context, response }) {
+        if (context.stopping.aborted) {
+          response.status(503);
+          return { status: 'stopping' as const };
+        }
+        const state = await readiness(context.sequelize);
+        if (state !== 'ok') response.status(503);
+        return { status: state };
+      },
+    }),
+    defineRoute(openApi, { access: 'signed-in', act: () => (description ??= describeApi(described())) }),
+  ];
+}
+
+async function readiness(sequelize: Parameters<typeof rows>[0]): Promise<'ok' | 'starting' | 'unavailable'> {
+  try {
+    const [{ applied }] = await rows<{ applied: number }>(sequelize, 'SELECT count(*)::int AS applied FROM migrations');
+    return applied >= migrations.length ? 'ok' : 'starting';
+  } catch {
+    return 'unavailable';
+  }
+}

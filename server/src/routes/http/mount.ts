@@ -1,0 +1,122 @@
+import type { Endpoint } from '@tallystone/contracts/endpoint';
+import { problemCodes } from '@tallystone/contracts/problems/codes';
+import type { ProblemItem } from '@tallystone/contracts/problems/schema';
+import express, { type Request, type RequestHandler, type Response, type Router } from 'express';
+import type { Transaction } from 'sequelize';
+import type { Context } from '../../context';
+import { inTransaction } from '../../database/transaction';
+import { demand } from '../../policies/decision';
+import { problemsOf } from '../../problems/from-error';
+import { Problem, notFound } from '../../problems/problem';
+import { checkCrossSite } from './cross-site';
+import { matchRevision, tagOf } from './entity-tag';
+import { once } from './idempotency';
+import { limitRequests } from './limit';
+import { personOf } from './person-of';
+import type { Access, Call, Route } from './route';
+
+const changes = (endpoint: Endpoint): boolean => endpoint.method !== 'GET' && endpoint.method !== 'HEAD';
+
+/** Mounts routes on a router, each as the chain of its recipe's steps. */
+export function mountRoutes(router: Router, context: Context, routes: readonly Route[]): void {
+  const limit = limitRequests();
+  for (const route of routes) {
+    const method = route.endpoint.method.toLowerCase() as 'get' | 'head' | 'post' | 'put' | 'patch' | 'delete';
+    router[method](route.endpoint.path, limit, handlerOf(context, route));
+  }
+}
+
+function handlerOf(context: Context, route: Route): RequestHandler {
+  const { endpoint, recipe } = route;
+  const readJson = express.json({ limit: recipe.largestBody ?? 256 * 1024, strict: false });
+  return async (request, response) => {
+    const person = await personOf(context, request);
+    if (route.access === 'signed-in' && !person) {
+      throw new Problem(401, problemCodes.signedOut, 'You are signed out. Sign in and try again.');
+    }
+    if (changes(endpoint)) checkCrossSite(context.config, request, person !== null);
+    if (recipe.admit) demand(recipe.admit(person));
+    const call = await read(context, endpoint, person, request, response, readJson);
+
+    const steps = async (tx: Transaction | null): Promise<unknown> => {
+      const inside: Call<Endpoint, Access> = { ...call, tx: tx as never };
+      const subject = recipe.find ? await recipe.find(inside) : undefined;
+      if (subject === null) throw notFound();
+      const found = { ...inside, subject } as never;
+      if (recipe.authorise) demand(await recipe.authorise(found));
+      const answer = await recipe.act(found);
+      // Remembered so that `afterwards` sees the same subject.
+      settled = found;
+      return present(endpoint, answer);
+    };
+    let settled: never = call as never;
+
+    if (recipe.streams) {
+      await steps(null);
+      return;
+    }
+    let body: unknown;
+    if (!changes(endpoint) || recipe.ownTransactions) body = await steps(null);
+    else if (recipe.idempotent && person) body = await once(context, { person, request, endpoint, body: call.body }, response, steps);
+    else body = await inTransaction(context.sequelize, steps);
+    if (recipe.afterwards) await recipe.afterwards(settled);
+    send(endpoint, response, body);
+  };
+}
+
+async function read(
+  context: Context,
+  endpoint: Endpoint,
+  person: Call<Endpoint, Access>['person'],
+  request: Request,
+  response: Response,
+  readJson: RequestHandler,
+): Promise<Call<Endpoint, Access>> {
+  const wantsJson = endpoint.body !== undefined && endpoint.body !== 'bytes';
+  if (wantsJson) {
+    if (hasBody(request) && !request.is('application/json')) {
+      throw new Problem(415, problemCodes.unsupported, 'This route reads JSON (Content-Type: application/json).');
+    }
+    await new Promise<void>((resolve, reject) => readJson(request, response, (error: unknown) => (error ? reject(error) : resolve())));
+  }
+  // A row that cannot exist is a row that does not: an identifier that is no uuid is not found rather than invalid.
+  const params = endpoint.params?.safeParse(request.params);
+  if (params && !params.success) throw notFound();
+  const problems: ProblemItem[] = [];
+  const query = endpoint.query?.safeParse(request.query);
+  if (query && !query.success) problems.push(...problemsOf(query.error, 'query'));
+  const body = wantsJson ? (endpoint.body as Exclude<Endpoint['body'], 'bytes' | undefined>).safeParse(request.body ?? {}) : undefined;
+  if (body && !body.success) problems.push(...problemsOf(body.error, 'body'));
+  if (problems.length > 0) {
+    const detail = problems.length === 1 ? problems[0].message : `${problems.length} things of the request are not valid.`;
+    throw new Problem(422, problemCodes.invalid, detail, { problems });
+  }
+  return {
+    context,
+    person,
+    params: (params?.data ?? {}) as never,
+    query: (query?.data ?? {}) as never,
+    body: body?.data as never,
+    tx: null as never,
+    subject: undefined,
+    request,
+    response,
+    requestId: String(request.id),
+    address: request.ip ?? 'unknown',
+    match: (revision) => matchRevision(request, revision),
+    tag: (revision) => void response.setHeader('ETag', tagOf(revision)),
+  };
+}
+
+const hasBody = (request: Request): boolean => request.headers['transfer-encoding'] !== undefined || Number(request.headers['content-length'] ?? 0) > 0;
+
+/** Holds the answer to its schema: what the contract does not name never leaves. */
+function present(endpoint: Endpoint, answer: unknown): unknown {
+  return typeof endpoint.response === 'string' ? undefined : endpoint.response.parse(answer);
+}
+
+function send(endpoint: Endpoint, response: Response, body: unknown): void {
+  if (response.headersSent) return;
+  if (endpoint.response === 'nothing') response.status(204).end();
+  else response.status(endpoint.status ?? 200).json(body);
+}
