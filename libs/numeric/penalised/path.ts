@@ -1,0 +1,134 @@
+import { requireThat } from '../checks';
+import { rowLoss, probabilityOfGood } from './loss';
+import type { Fit, FitProblem, Grid, Path } from './problem';
+import { Solver } from './solver';
+import { requireLambda, requireProblem } from './validation';
+
+/** Default of the largest optimality residual of a fit that is reported. */
+export const FIT_TOLERANCE = 1e-9;
+
+/** Ratio of neighbouring lambdas on the way to a cold one. */
+const APPROACH_RATIO = 0.25;
+
+export interface FitOptions {
+  /** Largest optimality residual of a converged fit; default 1e-9. */
+  readonly tolerance?: number;
+  readonly mostIterations?: number;
+  /** Called with the objective after each accepted iteration of each fit, also of those on the way. */
+  readonly onIteration?: (objective: number) => void;
+}
+
+/** Deviance of the weighted intercept only (with the offset, if there is one). Newton in one dimension. */
+export function nullDeviance(problem: FitProblem): number {
+  const { outcome, weights, offset } = problem;
+  let good = 0;
+  let total = 0;
+  for (let i = 0; i < outcome.length; i++) {
+    const w = weights ? weights[i] : 1;
+    total += w;
+    good += w * outcome[i];
+  }
+  let intercept = Math.log(good / (total - good));
+  for (let round = 0; offset && round < 100; round++) {
+    let gradient = 0;
+    let curvature = 0;
+    for (let i = 0; i < outcome.length; i++) {
+      const w = weights ? weights[i] : 1;
+      const p = probabilityOfGood(intercept + offset[i]);
+      gradient += w * (p - outcome[i]);
+      curvature += w * p * (1 - p);
+    }
+    // The step is held to 1: far out the curvature vanishes and a full step would overshoot.
+    const step = Math.max(-1, Math.min(1, gradient / curvature));
+    intercept -= step;
+    if (Math.abs(step) < 1e-14 * Math.max(1, Math.abs(intercept))) break;
+  }
+  let sum = 0;
+  for (let i = 0; i < outcome.length; i++) sum += (weights ? weights[i] : 1) * rowLoss(intercept + (offset ? offset[i] : 0), outcome[i]);
+  return 2 * sum;
+}
+
+/** Fits intercept and unpenalised columns and returns the largest lambda; the solver is left at that fit. */
+export function startAtLargest(solver: Solver): number {
+  solver.solve(0, { tolerance: 1e-13, mostIterations: 60, unpenalisedOnly: true });
+  return solver.largestLambda();
+}
+
+/** Brings a solver from the largest lambda near to `lambda` by a short, loosely solved path. */
+export function approach(solver: Solver, from: number, lambda: number, options: FitOptions = {}): void {
+  const last = lambda > 0 ? lambda / APPROACH_RATIO : from * 1e-4;
+  for (let step = from * APPROACH_RATIO; step >= last && step > 0; step *= APPROACH_RATIO) {
+    solver.solve(step, { tolerance: Math.max(1e-3 * step, 1e-7), mostIterations: 50, onIteration: options.onIteration });
+  }
+}
+
+/**
+ * Largest lambda: at it no penalised column is in the model, just below it one is (mixing of at least 0.001).
+ * max over m_j > 0 of |g_j| / m_j / max(mixing, 0.001), g_j the gradient at the fit of intercept and unpenalised columns; with a limit at 0 only
+ * the inward gradient counts.
+ * @throws NumericError for bad arguments
+ * Source: J. Friedman, T. Hastie and R. Tibshirani, J. Statistical Software 33(1), 2010, section 2.5.
+ */
+export function largestLambda(problem: FitProblem): number {
+  requireProblem(problem);
+  return startAtLargest(new Solver(problem, problem.penalty, problem.weights));
+}
+
+/**
+ * Fits at every lambda of a grid, each started from the one before.
+ *
+ * An automatic grid is logarithmic from the largest lambda to smallestRatio times it and stops early, when asked to, once the explained share of
+ * deviance gains less than 1e-5 over the previous value from the fifth value on, or exceeds 0.999. A stated grid never stops and keeps its order.
+ * @throws NumericError for bad arguments; what data do to a fit (separation, an iteration limit) is its status
+ * @example fitPath({ columns, outcome, penalty: { mixing: 1, standardize: true } }, { count: 100, smallestRatio: 1e-4, earlyStop: true }).fits
+ */
+export function fitPath(
+  problem: FitProblem,
+  grid: Grid,
+  options: FitOptions & { readonly onFit?: (fit: Fit, index: number, count: number) => void } = {},
+): Path {
+  requireProblem(problem);
+  const solver = new Solver(problem, problem.penalty, problem.weights);
+  const largest = startAtLargest(solver);
+  const automatic = !('lambdas' in grid);
+  const lambdas = automatic ? automaticGrid(largest, grid.count, grid.smallestRatio) : Array.from(grid.lambdas);
+  lambdas.forEach(requireLambda);
+  const nullValue = nullDeviance(problem);
+  const fits: Fit[] = [];
+  let stoppedEarly = false;
+  if (lambdas.length > 0) approach(solver, largest, lambdas[0], options);
+  for (const [index, lambda] of lambdas.entries()) {
+    const fit = solver.solve(lambda, { ...options, tolerance: options.tolerance ?? FIT_TOLERANCE });
+    fits.push(fit);
+    options.onFit?.(fit, index, lambdas.length);
+    if (!automatic || !grid.earlyStop || index === 0) continue;
+    const explained = 1 - fit.deviance / nullValue;
+    const gain = (fits[index - 1].deviance - fit.deviance) / nullValue;
+    if ((index >= 4 && gain < 1e-5) || explained > 0.999) {
+      stoppedEarly = index < lambdas.length - 1;
+      break;
+    }
+  }
+  return { fits, nullDeviance: nullValue, largestLambda: largest, stoppedEarly };
+}
+
+/** Logarithmic grid of `count` values from `largest` to `smallestRatio` times it. */
+export function automaticGrid(largest: number, count: number, smallestRatio: number): number[] {
+  requireThat(Number.isInteger(count) && count >= 1, 'count', 'count must be a whole number of at least 1.');
+  requireThat(smallestRatio > 0 && smallestRatio < 1, 'smallestRatio', 'the smallest ratio lies strictly between 0 and 1.');
+  requireThat(largest > 0, 'grid', 'no penalised column has a gradient at all, so there is no largest lambda to start from.');
+  return Array.from({ length: count }, (_, k) => (k === 0 ? largest : largest * Math.exp((Math.log(smallestRatio) * k) / (count - 1))));
+}
+
+/**
+ * Fit at one lambda: from `start`, or cold by a short path from the largest lambda.
+ * @example fitAt({ columns, outcome, penalty: { mixing: 1, standardize: true } }, 0.01).coefficients
+ */
+export function fitAt(problem: FitProblem, lambda: number, options: FitOptions & { readonly start?: Fit } = {}): Fit {
+  requireProblem(problem);
+  requireLambda(lambda);
+  const solver = new Solver(problem, problem.penalty, problem.weights);
+  if (options.start) solver.startFrom(options.start.intercept, options.start.coefficients);
+  else approach(solver, startAtLargest(solver), lambda, options);
+  return solver.solve(lambda, { ...options, tolerance: options.tolerance ?? FIT_TOLERANCE });
+}
