@@ -6,7 +6,9 @@ import { EditKind } from './edits';
 const column = z.string();
 
 export const binningEvents = [
-  recordEvent('binning.started', 'binning', { after: z.strictObject({ name: z.string(), definitionId: z.uuid(), constraints: Constraints }) }),
+  recordEvent('binning.started', 'binning', {
+    after: z.strictObject({ name: z.string(), definitionId: z.uuid(), constraints: Constraints }),
+  }),
   recordEvent('binning.classed', 'binning', { after: z.strictObject({ characteristics: z.int() }) }),
   recordEvent('binning.edited', 'binning-characteristic', {
     before: Bins,
@@ -35,5 +37,8 @@ export const binningEvents = [
     reason: z.string().optional(),
   }),
   recordEvent('binning.left-out', 'binning-characteristic', { detail: z.strictObject({ column }), reason: z.string() }),
-  recordEvent('binning.taken-in', 'binning-characteristic', { detail: z.strictObject({ column }), reason: z.string().optional() }),
+  recordEvent('binning.taken-in', 'binning-characteristic', {
+    detail: z.strictObject({ column }),
+    reason: z.string().optional(),
+  }),
 ] as const;

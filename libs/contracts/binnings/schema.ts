@@ -13,7 +13,11 @@ export type BinningState = z.infer<typeof BinningState>;
 
 const name = z.string().trim().min(1, 'Give the binning a name').max(120);
 
-export const NewBinning = z.strictObject({ definitionId: z.uuid(), name, constraints: Constraints.default(() => Constraints.parse({})) });
+export const NewBinning = z.strictObject({
+  definitionId: z.uuid(),
+  name,
+  constraints: Constraints.default(() => Constraints.parse({})),
+});
 export type NewBinning = z.input<typeof NewBinning>;
 
 export const BinningSummary = z.object({
@@ -118,7 +122,6 @@ export const CharacteristicDetail = z
     ...summary,
     /** Exactly one entry of a specification's `characteristics`. */
     definition: z.custom<BinnedCharacteristic>((value) => typeof value === 'object' && value !== null),
-    bins: z.int(),
     current: Bins,
     automatic: Bins,
     /** The constraints under which it was classed last. */
