@@ -26,7 +26,10 @@ export function alternative<Out>(pick: (value: unknown) => z.ZodType<Out, unknow
 }
 
 /** Adds a check of several keys of one object; it runs once the object's own keys are valid. */
-export function checked<Out>(schema: z.ZodType<Out, unknown>, check: (value: Out, report: Report) => void): z.ZodType<Out, unknown> {
+export function checked<Out>(
+  schema: z.ZodType<Out, unknown>,
+  check: (value: Out, report: Report) => void,
+): z.ZodType<Out, unknown> {
   return schema.superRefine((value, context) => {
     check(value, (path, code, message) => {
       context.addIssue({ code: 'custom', path, message, params: { code } });

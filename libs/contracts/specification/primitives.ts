@@ -11,9 +11,7 @@ export const columnName = z
 export const finite = z.number();
 
 /** Days of the proleptic Gregorian calendar as ISO 8601 writes them. */
-export const isoDate = z
-  .string()
-  .refine((text) => isIsoDate(text), 'expected an ISO date, YYYY-MM-DD');
+export const isoDate = z.string().refine((text) => isIsoDate(text), 'expected an ISO date, YYYY-MM-DD');
 
 /** True for YYYY-MM-DD that names an existing day. */
 export function isIsoDate(text: string): boolean {

@@ -35,7 +35,11 @@ export function parseSpecification(input: unknown): { specification: Specificati
       problems.push({ code: 'missing-key', message: `"${key}" is required.`, where: { path: key } });
       continue;
     }
-    const value: unknown = present ? (input as Record<string, unknown>)[key] : 'whenAbsent' in section ? section.whenAbsent : undefined;
+    const value: unknown = present
+      ? (input as Record<string, unknown>)[key]
+      : 'whenAbsent' in section
+        ? section.whenAbsent
+        : undefined;
     const parsed = section.schema.safeParse(value);
     if (parsed.success) sound[key] = parsed.data;
     else problems.push(...problemsOf(parsed.error.issues, [key]));
@@ -52,7 +56,11 @@ function acrossSections(given: Partial<Specification>): Finding[] {
   const { characteristics, outcome, declined, weight, partition, fit, reasons, cutOff } = given;
   if (characteristics !== undefined) {
     for (const column of repeated(characteristics.map((entry) => entry.column))) {
-      findings.push({ path: ['characteristics'], code: 'listed-twice', message: `The column "${column}" is listed more than once.` });
+      findings.push({
+        path: ['characteristics'],
+        code: 'listed-twice',
+        message: `The column "${column}" is listed more than once.`,
+      });
     }
     const barred = new Map<string, string>();
     if (weight) barred.set(weight.column, 'the weight');

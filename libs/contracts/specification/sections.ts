@@ -32,7 +32,9 @@ const data: z.ZodType<DataReading, unknown> = checked<DataReading>(
       .regex(/^[0-9a-f]{64}$/, 'expected 64 lower-case hexadecimal digits')
       .nullable()
       .default(null),
-    delimiter: oneCharacter.refine((text) => !'"\r\n'.includes(text), 'a quote or a line end cannot be the delimiter').default(','),
+    delimiter: oneCharacter
+      .refine((text) => !'"\r\n'.includes(text), 'a quote or a line end cannot be the delimiter')
+      .default(','),
     encoding: z.enum(['utf-8', 'utf-16le', 'utf-16be', 'windows-1252']).default('utf-8'),
     decimal: z.enum(['.', ',']).default('.'),
     thousands: oneCharacter
@@ -43,7 +45,8 @@ const data: z.ZodType<DataReading, unknown> = checked<DataReading>(
     missing: texts.default(['', 'NA']),
   }),
   (value, report) => {
-    if (value.thousands === value.decimal) report(['thousands'], 'same-sign', 'The thousands sign and the decimal sign are the same.');
+    if (value.thousands === value.decimal)
+      report(['thousands'], 'same-sign', 'The thousands sign and the decimal sign are the same.');
   },
 );
 
@@ -66,7 +69,9 @@ const columnTest = checked<ColumnTest & { reason?: string }>(
     if (tests.every((test) => value[test] === undefined)) {
       report([], 'no-test', 'The rule names a column but no test: in, notIn, below, atMost, above, atLeast or missing.');
     }
-    const kinds = new Set([value.below, value.atMost, value.above, value.atLeast].filter((x) => x !== undefined).map((x) => typeof x));
+    const kinds = new Set(
+      [value.below, value.atMost, value.above, value.atLeast].filter((x) => x !== undefined).map((x) => typeof x),
+    );
     if (kinds.size > 1) report([], 'mixed-limits', 'The limits of one rule are either all numbers or all dates.');
   },
 );
@@ -127,7 +132,8 @@ const partitionBySeed = checked<PartitionBySeed>(
   }),
   (value, report) => {
     const { from, to } = value.outOfTime ?? { from: null, to: null };
-    if (from !== null && to !== null && from > to) report(['outOfTime'], 'not-ascending', 'The out-of-time period ends before it begins.');
+    if (from !== null && to !== null && from > to)
+      report(['outOfTime'], 'not-ascending', 'The out-of-time period ends before it begins.');
   },
 );
 
@@ -138,13 +144,16 @@ const woe: z.ZodType<WoeSettings, unknown> = z.strictObject({
   when: z.enum(['zero-cell', 'always', 'never']).default('zero-cell'),
 });
 
-const grid = checked<{ grid: number[] }>(z.strictObject({ grid: z.array(finite.nonnegative()).min(1).max(1000) }), (value, report) => {
-  value.grid.forEach((lambda, index) => {
-    if (index > 0 && !(lambda < value.grid[index - 1])) {
-      report(['grid', index], 'not-descending', `Penalty ${lambda} is not below the one before it, ${value.grid[index - 1]}.`);
-    }
-  });
-});
+const grid = checked<{ grid: number[] }>(
+  z.strictObject({ grid: z.array(finite.nonnegative()).min(1).max(1000) }),
+  (value, report) => {
+    value.grid.forEach((lambda, index) => {
+      if (index > 0 && !(lambda < value.grid[index - 1])) {
+        report(['grid', index], 'not-descending', `Penalty ${lambda} is not below the one before it, ${value.grid[index - 1]}.`);
+      }
+    });
+  },
+);
 
 const lambda = alternative<LambdaChoice>((value) => {
   if (has(value, 'value')) return z.strictObject({ value: finite.nonnegative() });

@@ -102,7 +102,7 @@ export interface ReadingOptions {
 
 /** What is known of the whole file once it has been read. `problems` is empty exactly if the file can be used. */
 export interface FileFacts {
-  /** Of the raw bytes, lower-case hexadecimal. */
+  /** Of the raw bytes, lower-case hexadecimal; "" for a file that is not text and was not read to its end. */
   sha256: string;
   bytes: number;
   /** Data records, the header not counted. */
@@ -112,6 +112,7 @@ export interface FileFacts {
   problems: ReadingProblem[];
 }
 
+/** What `readColumns` gives. */
 export interface ReadFile extends FileFacts {
   /** Empty if there is any problem. */
   columns: RawColumn[];

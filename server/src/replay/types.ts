@@ -60,7 +60,9 @@ export interface CodeMatrix {
 
 /** Which column of the design a coefficient belongs to. */
 export type Term =
-  { characteristic: number; kind: 'woe' } | { characteristic: number; kind: 'bin'; bin: number } | { characteristic: number; kind: 'linear' };
+  | { characteristic: number; kind: 'woe' }
+  | { characteristic: number; kind: 'bin'; bin: number }
+  | { characteristic: number; kind: 'linear' };
 
 /** A linear predictor: eta = intercept + sum over terms. */
 export interface Model {

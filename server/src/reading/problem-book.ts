@@ -1,0 +1,130 @@
+import type { Encoding } from '@tallystone/contracts/specification/types';
+import { ENCODING_NAMES } from './encodings';
+import type { ReadingProblem, ReadingProblemCode } from './types';
+
+const MOST_LINES = 20;
+/** Problems of single cells are listed up to here, and counted beyond. */
+const MOST_CELLS = 20;
+
+interface Lines {
+  lines: number[];
+  count: number;
+  detail: string;
+  record: number;
+}
+
+/** Collects what is wrong with a file while it is read: one problem per kind for whole lines, one per cell otherwise. */
+export class ProblemBook {
+  any = false;
+  /** The limit, once a row beyond it has come. */
+  tooManyRows: number | null = null;
+  rowsFound = 0;
+
+  private readonly list: ReadingProblem[] = [];
+  private readonly byLine = new Map<ReadingProblemCode, Lines>();
+  private readonly cells = new Map<ReadingProblemCode, number>();
+  private encoding: Encoding = 'utf-8';
+
+  add(problem: ReadingProblem): void {
+    this.any = true;
+    this.list.push(problem);
+  }
+
+  ragged(line: number, record: number, found: number, expected: number): void {
+    this.lineFault(
+      'ragged',
+      line,
+      record,
+      `line ${line} has ${found} field${found === 1 ? '' : 's'} where the header has ${expected}`,
+    );
+  }
+
+  strayQuote(line: number, record: number): void {
+    this.lineFault('stray-quote', line, record, '');
+  }
+
+  notInEncoding(line: number, encoding: Encoding): void {
+    this.encoding = encoding;
+    if (this.byLine.get('not-in-encoding')?.lines.at(-1) !== line) this.lineFault('not-in-encoding', line, 0, '');
+  }
+
+  unclosedQuote(line: number, record: number): void {
+    this.add({
+      code: 'unclosed-quote',
+      message: `A quote is opened on line ${line} and never closed.`,
+      where: { line, record },
+    });
+  }
+
+  cellTooLarge(line: number, record: number, position: number, column: string | undefined, most: number): void {
+    this.cellFault('cell-too-large', `holds more than ${most.toLocaleString('en-GB')} characters`, {
+      line,
+      record,
+      position,
+      column,
+    });
+  }
+
+  nul(line: number, record: number, position: number, column: string | undefined): void {
+    this.cellFault('nul-byte', 'contains a NUL byte', { line, record, position, column });
+  }
+
+  problems(): ReadingProblem[] {
+    const problems = [...this.list];
+    for (const [code, { lines, count, detail, record }] of this.byLine) {
+      const where = { line: lines[0], lines, count, ...(record > 0 ? { record } : {}) };
+      problems.push({ code, message: this.say(code, lines, count, detail), where });
+    }
+    for (const [code, count] of this.cells) {
+      if (count > MOST_CELLS) {
+        problems.push({ code, message: `The same is true of ${count - MOST_CELLS} more cells.`, where: { count } });
+      }
+    }
+    if (this.tooManyRows !== null) {
+      problems.push({
+        code: 'too-many-rows',
+        message: `The file has ${this.rowsFound.toLocaleString('en-GB')} rows; at most ${this.tooManyRows.toLocaleString('en-GB')} can be brought in.`,
+        where: { count: this.rowsFound },
+      });
+    }
+    return problems.sort((a, b) => (a.where.line ?? 0) - (b.where.line ?? 0));
+  }
+
+  private say(code: ReadingProblemCode, lines: number[], count: number, detail: string): string {
+    const others = count > 1 ? ` ${count} lines in all: ${lines.join(', ')}${count > lines.length ? ', …' : ''}.` : '';
+    if (code === 'ragged') return `${detail.charAt(0).toUpperCase()}${detail.slice(1)}.${others}`;
+    if (code === 'stray-quote')
+      return `Line ${lines[0]} has text after a closing quote; a quote inside a quoted field is doubled.${others}`;
+    const offer = this.encoding === 'utf-8' ? '; read as Windows-1252?' : '.';
+    return `Line ${lines[0]} is not ${ENCODING_NAMES[this.encoding]}${offer}${others}`;
+  }
+
+  private lineFault(code: ReadingProblemCode, line: number, record: number, detail: string): void {
+    this.any = true;
+    const known = this.byLine.get(code);
+    if (known === undefined) {
+      this.byLine.set(code, { lines: [line], count: 1, detail, record });
+    } else {
+      known.count++;
+      if (known.lines.length < MOST_LINES) known.lines.push(line);
+    }
+  }
+
+  private cellFault(
+    code: ReadingProblemCode,
+    what: string,
+    place: { line: number; record: number; position: number; column: string | undefined },
+  ): void {
+    const count = (this.cells.get(code) ?? 0) + 1;
+    this.cells.set(code, count);
+    this.any = true;
+    if (count > MOST_CELLS) return;
+    const { column, ...where } = place;
+    const name = column === undefined ? `column ${place.position}` : `column ${place.position} ("${column}")`;
+    this.add({
+      code,
+      message: `The cell in line ${place.line}, ${name}, ${what}.`,
+      where: column === undefined ? where : { ...where, column },
+    });
+  }
+}

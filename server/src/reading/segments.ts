@@ -1,0 +1,285 @@
+import { createHash } from 'node:crypto';
+import { byteOrderMark, decoderOf, ENCODING_NAMES, signatureProblem } from './encodings';
+import { headerProblems } from './header';
+import { ProblemBook } from './problem-book';
+import { Scanner, type RecordSink } from './scanner';
+import type { FileFacts, ReadingChoices, ReadingOptions, ReadingProblem, Segment } from './types';
+
+/** Pieces of a large chunk are decoded one at a time, so that no string is ever longer than this many bytes. */
+const PIECE = 1 << 20;
+const SIGNATURE = 4096;
+
+export interface SegmentedFile {
+  /** Segments in order. None comes any more once there is a problem. */
+  segments: AsyncGenerator<Segment, void, void>;
+  /** Known once `segments` has ended. */
+  facts(): FileFacts;
+}
+
+/**
+ * Reads a raw file as a stream into segments of dictionary-coded texts: memory is bounded by one segment whatever the file's size.
+ *
+ * All problems of the file are collected (`facts().problems`), not the first alone; reading goes on to the end to find them, except
+ * for files that are not text at all.
+ *
+ * @param stream the file's bytes in order
+ * @throws whatever `options.signal` was aborted with, or the stream's own error
+ * @example
+ * const file = readSegments(createReadStream(path), { encoding: 'utf-8', delimiter: ',', trim: true });
+ * for await (const segment of file.segments) await store(segment);
+ * const facts = file.facts();
+ * if (facts.problems.length > 0) await discard();
+ */
+export function readSegments(
+  stream: AsyncIterable<Buffer | Uint8Array>,
+  reading: ReadingChoices,
+  options: ReadingOptions = {},
+): SegmentedFile {
+  const facts: FileFacts = { sha256: '', bytes: 0, rows: 0, header: [], problems: [] };
+  return { segments: read(stream, reading, options, facts), facts: () => facts };
+}
+
+async function* read(
+  stream: AsyncIterable<Buffer | Uint8Array>,
+  reading: ReadingChoices,
+  options: ReadingOptions,
+  facts: FileFacts,
+): AsyncGenerator<Segment, void, void> {
+  const book = new ProblemBook();
+  const builder = new SegmentBuilder(options, book);
+  const scanner = new Scanner(reading.delimiter, reading.trim, options.mostCharacters ?? 1_000_000, builder);
+  const decoder = decoderOf(reading.encoding);
+  const hash = createHash('sha256');
+  const finish = (): void => {
+    facts.rows = builder.rows;
+    facts.header = builder.header;
+    facts.problems = book.problems();
+  };
+  const onFault = (line: number): void => book.notInEncoding(line, reading.encoding);
+
+  let first: Buffer | null = Buffer.alloc(0);
+  const pieces = function* (chunk: Buffer): Generator<string> {
+    for (let from = 0; from < chunk.length; from += PIECE)
+      yield decoder.decode(chunk.subarray(from, from + PIECE), scanner.line, onFault);
+  };
+  const opening = (bytes: Buffer): Buffer | ReadingProblem => {
+    const problem = signatureProblem(bytes);
+    if (problem !== null) return problem;
+    const mark = byteOrderMark(bytes);
+    if (mark === null) return bytes;
+    if (mark.encoding === reading.encoding) return bytes.subarray(mark.length);
+    return {
+      code: 'wrong-encoding',
+      message: `The file says it is ${ENCODING_NAMES[mark.encoding]}, not ${ENCODING_NAMES[reading.encoding]}.`,
+      where: { line: 1 },
+    };
+  };
+
+  for await (const incoming of stream) {
+    options.signal?.throwIfAborted();
+    let chunk = Buffer.isBuffer(incoming) ? incoming : Buffer.from(incoming.buffer, incoming.byteOffset, incoming.byteLength);
+    hash.update(chunk);
+    facts.bytes += chunk.length;
+    if (first !== null) {
+      first = Buffer.concat([first, chunk]);
+      if (first.length < SIGNATURE) continue;
+      const opened = opening(first);
+      first = null;
+      if (!Buffer.isBuffer(opened)) return giveUp(opened);
+      chunk = opened;
+    }
+    for (const text of pieces(chunk)) {
+      scanner.push(text);
+      facts.header = builder.header;
+      yield* builder.take();
+    }
+    options.onProgress?.({ bytes: facts.bytes, rows: builder.rows });
+  }
+  options.signal?.throwIfAborted();
+  if (first !== null) {
+    const opened = opening(first);
+    if (!Buffer.isBuffer(opened)) return giveUp(opened);
+    for (const text of pieces(opened)) scanner.push(text);
+  }
+  scanner.push(decoder.end(scanner.line, onFault));
+  scanner.end();
+  builder.end();
+  facts.sha256 = hash.digest('hex');
+  finish();
+  if (facts.problems.length === 0) yield* builder.take();
+  options.onProgress?.({ bytes: facts.bytes, rows: builder.rows });
+
+  function giveUp(problem: ReadingProblem): void {
+    book.add(problem);
+    finish();
+  }
+}
+
+/** Codes one column's texts by a dictionary that starts anew with every segment. */
+class ColumnBuilder {
+  private readonly places = new Map<string, number>();
+  private texts: string[] = [];
+  private codes: Uint32Array;
+
+  constructor(private readonly capacity: number) {
+    this.codes = new Uint32Array(Math.min(capacity, 1024));
+  }
+
+  set(row: number, text: string): void {
+    let code = this.places.get(text);
+    if (code === undefined) {
+      code = this.texts.length;
+      const kept = detached(text);
+      this.places.set(kept, code);
+      this.texts.push(kept);
+    }
+    if (row >= this.codes.length) {
+      const wider = new Uint32Array(Math.min(this.capacity, this.codes.length * 4));
+      wider.set(this.codes);
+      this.codes = wider;
+    }
+    this.codes[row] = code;
+  }
+
+  take(rows: number): Segment['columns'][number] {
+    const { texts } = this;
+    const from = this.codes.subarray(0, rows);
+    const codes =
+      texts.length <= 0x100 ? Uint8Array.from(from) : texts.length <= 0x1_0000 ? Uint16Array.from(from) : from.slice();
+    this.places.clear();
+    this.texts = [];
+    return { codes, texts };
+  }
+}
+
+/** A copy that does not hold on to the chunk it was cut from. (Engines copy short pieces anyway.) */
+function detached(text: string): string {
+  return text.length < 13 ? text : Buffer.from(text, 'utf16le').toString('utf16le');
+}
+
+class SegmentBuilder implements RecordSink {
+  header: string[] = [];
+  rows = 0;
+
+  private hasHeader = false;
+  private readonly columns: (ColumnBuilder | null)[] = [];
+  private readonly ready: Segment[] = [];
+  private inSegment = 0;
+  private blankLines: number[] = [];
+  private blanks = 0;
+  private readonly segmentRows: number;
+  private readonly mostRows: number;
+  private readonly mostColumns: number;
+
+  constructor(
+    private readonly options: ReadingOptions,
+    private readonly book: ProblemBook,
+  ) {
+    this.segmentRows = options.segmentRows ?? 65_536;
+    this.mostRows = options.mostRows ?? 1_000_000;
+    this.mostColumns = options.mostColumns ?? 200;
+  }
+
+  record(fields: string[], line: number, blank: boolean): void {
+    if (!this.hasHeader) {
+      this.readHeader(fields, line);
+      return;
+    }
+    if (blank && this.header.length > 1) {
+      // Blank lines at the very end are harmless; before another record they are ragged.
+      this.blanks++;
+      if (this.blankLines.length < 20) this.blankLines.push(line);
+      return;
+    }
+    if (this.blanks > 0) this.raggedBlanks();
+    const row = this.rows++;
+    if (fields.length !== this.header.length) {
+      this.book.ragged(line, this.rows, fields.length, this.header.length);
+      return;
+    }
+    if (row >= this.mostRows) {
+      this.book.tooManyRows = this.mostRows;
+      this.book.any = true;
+    }
+    if (this.book.any) return;
+    const at = this.inSegment++;
+    for (let index = 0; index < fields.length; index++) this.columns[index]?.set(at, fields[index]);
+    if (this.inSegment === this.segmentRows) this.close();
+  }
+
+  strayQuote(line: number): void {
+    this.book.strayQuote(line, this.recordNumber);
+  }
+
+  cellTooLarge(line: number, field: number): void {
+    this.book.cellTooLarge(line, this.recordNumber, field + 1, this.header[field], this.options.mostCharacters ?? 1_000_000);
+  }
+
+  nul(line: number, field: number): void {
+    this.book.nul(line, this.recordNumber, field + 1, this.header[field]);
+  }
+
+  unclosedQuote(openingLine: number): void {
+    this.book.unclosedQuote(openingLine, this.recordNumber);
+  }
+
+  end(): void {
+    this.book.rowsFound = this.rows;
+    if (!this.hasHeader) {
+      this.book.add({ code: 'no-rows', message: 'No rows: the file is empty.', where: {} });
+    } else if (this.rows === 0 && !this.book.any) {
+      this.book.add({ code: 'no-rows', message: 'No rows: the file has a header and nothing below it.', where: { line: 1 } });
+    }
+    if (this.inSegment > 0) this.close();
+  }
+
+  *take(): Generator<Segment, void, void> {
+    const segments = this.ready.splice(0);
+    if (!this.book.any) yield* segments;
+  }
+
+  /** The record being read; 0 while it is the header. */
+  private get recordNumber(): number {
+    return this.hasHeader ? this.rows + 1 : 0;
+  }
+
+  private readHeader(fields: string[], line: number): void {
+    if (fields.length === 1 && fields[0] === '') return;
+    this.hasHeader = true;
+    this.header = fields.map(detached);
+    for (const problem of headerProblems(this.header, line)) this.book.add(problem);
+    if (fields.length > this.mostColumns) {
+      this.book.add({
+        code: 'too-many-columns',
+        message: `The file has ${fields.length} columns; at most ${this.mostColumns} can be brought in.`,
+        where: { line, count: fields.length },
+      });
+    }
+    const wanted = this.options.columns === undefined ? null : new Set(this.options.columns);
+    for (const name of wanted ?? []) {
+      if (!this.header.includes(name)) {
+        this.book.add({ code: 'missing-column', message: `The file has no column "${name}".`, where: { line, column: name } });
+      }
+    }
+    for (const name of this.header) {
+      this.columns.push(wanted === null || wanted.has(name) ? new ColumnBuilder(this.segmentRows) : null);
+    }
+  }
+
+  private raggedBlanks(): void {
+    for (let index = 0; index < this.blanks; index++) {
+      this.rows++;
+      this.book.ragged(this.blankLines[index] ?? 0, this.rows, 1, this.header.length);
+    }
+    this.blanks = 0;
+    this.blankLines = [];
+  }
+
+  private close(): void {
+    const rows = this.inSegment;
+    const firstRow = Math.min(this.rows, this.mostRows) - rows;
+    const columns = this.columns.map((column) => column?.take(rows) ?? { codes: new Uint8Array(0), texts: [] });
+    this.ready.push({ firstRow, rows, columns });
+    this.inSegment = 0;
+  }
+}
