@@ -28,6 +28,9 @@ export interface FigureTable<Row = unknown> {
   readonly rows: readonly Row[];
 }
 
+/** A table of rows of any shape: the frame only hands them on, and each column reads the rows it was written for. */
+type AnyFigureTable = { readonly columns: readonly Column<never>[]; readonly rows: readonly unknown[] };
+
 /**
  * Makes one mark of a chart a point that the keyboard can reach. Left and right go along its series, up and down to the next series.
  *
@@ -73,13 +76,13 @@ export class FigureFrame {
   readonly finding = input<string | null>(null);
   /** Beside the title, in the second ink: "numeric, rising risk, IV 0.49". */
   readonly note = input<string | null>(null);
-  // Rows of any shape: the frame only hands them to the table.
-  readonly table = input<FigureTable<never> | null>(null);
+  readonly table = input<AnyFigureTable | null>(null);
 
   private readonly points = contentChildren(FigurePoint, { descendants: true });
   private readonly chart = viewChild<ElementRef<HTMLElement>>('chart');
   private readonly focused = signal<FigurePoint | null>(null);
   private readonly hovered = signal<FigurePoint | null>(null);
+  protected readonly numbers = computed(() => this.table() as FigureTable | null);
   protected readonly asTable = signal(false);
   protected readonly failed = signal<string | null>(null);
   protected readonly level = inject(HEADING_LEVEL);
@@ -150,7 +153,7 @@ export class FigureFrame {
   }
 
   protected saveCsv(): void {
-    const table = this.table();
+    const table = this.numbers();
     if (!table) return;
     const rows = table.rows.map((row) => table.columns.map((column) => column.value(row)));
     saveFile(fileName(this.title(), 'csv'), csv(table.columns.map(headerText), rows), 'text/csv;charset=utf-8');

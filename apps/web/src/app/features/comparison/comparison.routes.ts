@@ -1,6 +1,5 @@
 import { Routes } from '@angular/router';
 
-/** Comparison: no page answers here yet, so the address says "not found" rather than pretend. */
 export const comparisonRoutes: Routes = [
-  { path: '', title: 'Comparison', loadComponent: () => import('../../shell/not-found').then((m) => m.NotFound) },
+  { path: '', title: 'Comparison', loadComponent: () => import('./pages/comparison-page').then((m) => m.ComparisonPage) },
 ];

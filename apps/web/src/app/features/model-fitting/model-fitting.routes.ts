@@ -1,6 +1,13 @@
 import { Routes } from '@angular/router';
+import { keepsUnsavedWork } from '../../core/unsaved-changes';
 
-/** Fit: no page answers here yet, so the address says "not found" rather than pretend. */
 export const modelFittingRoutes: Routes = [
-  { path: '', title: 'Fit', loadComponent: () => import('../../shell/not-found').then((m) => m.NotFound) },
+  { path: '', title: 'Fits', loadComponent: () => import('./pages/fits-page').then((m) => m.FitsPage) },
+  {
+    path: 'new',
+    title: 'New fit',
+    canDeactivate: [keepsUnsavedWork],
+    loadComponent: () => import('./pages/new-fit-page').then((m) => m.NewFitPage),
+  },
+  { path: ':fitId', title: 'Fit', loadComponent: () => import('./pages/fit-page').then((m) => m.FitPage) },
 ];

@@ -1,0 +1,48 @@
+import type { ComparedCharacteristic, ComparedMetrics, Comparison, PairedTest } from '@tallystone/contracts/comparison/schema';
+import { DASH, fixed, metric, plural, signed, significant } from '../../../ui/numbers';
+
+/**
+ * The sentence of the page, the first rule that holds: coefficients that change sign; a hold-out difference that chance hardly explains
+ * (p below 0.05, a usual reading, common practice); else how far apart the hold-out AUC values are.
+ */
+export function comparisonFinding(comparison: Comparison): string {
+  const flips = comparison.characteristics.filter((entry) => entry.signFlip);
+  if (flips.length > 0) {
+    return `${plural(flips.length, 'coefficient')} ${flips.length === 1 ? 'changes' : 'change'} sign between the fits: ${flips.map((entry) => entry.label).join(', ')}.`;
+  }
+  const tests = comparison.tests.filter((test) => test.partition === 'holdOut');
+  const clear = tests.filter((test) => test.pValue !== null && test.pValue < 0.05);
+  const name = (id: string): string => comparison.fits.find((fit) => fit.id === id)?.name ?? id;
+  if (clear.length > 0) {
+    const largest = [...clear].sort((a, b) => Math.abs(b.difference) - Math.abs(a.difference))[0];
+    return `On hold-out ${name(largest.fitId)} ${largest.difference > 0 ? 'separates better' : 'separates worse'} than ${comparison.fits[0].name} by ${fixed(Math.abs(largest.difference), 4)} of AUC (p ${significant(largest.pValue, 2)}).`;
+  }
+  const values = comparison.fits.map((fit) => fit.holdOut?.auc).filter((value) => value !== undefined);
+  if (values.length < 2) return `${plural(comparison.fits.length, 'fit')} side by side.`;
+  return `Hold-out AUC differs by ${fixed(Math.max(...values) - Math.min(...values), 4)} at most, no more than chance would explain.`;
+}
+
+/** "0.781 (0.770 to 0.792)". */
+export function aucText(at: ComparedMetrics | null, covered: boolean): string {
+  if (!at) return covered ? 'covered' : DASH;
+  return at.aucLower === null ? metric(at.auc) : `${metric(at.auc)} (${metric(at.aucLower)} to ${metric(at.aucUpper)})`;
+}
+
+/** "+0.0031, p 0.04"; on rows that both were developed on there is no p-value, and the text says why. */
+export function testText(test: PairedTest | undefined): string {
+  if (!test) return DASH;
+  if (test.partition === 'development') return signed(test.difference, 4);
+  return test.pValue === null ? `${signed(test.difference, 4)}, no test` : `${signed(test.difference, 4)}, p ${significant(test.pValue, 2)}`;
+}
+
+/** Out: not part of the fit. Zero: shrunk to exactly zero. */
+export function coefficientText(value: number | null): string {
+  if (value === null) return 'not in fit';
+  return value === 0 ? '0' : fixed(value, 3);
+}
+
+/** Kept by some and not by others: what a choice between the fits decides. First those, then the rest in the order given. */
+export function contested(entry: ComparedCharacteristic): boolean {
+  const kept = entry.coefficients.map((value) => value !== null && value !== 0);
+  return kept.some(Boolean) && !kept.every(Boolean);
+}
