@@ -3,6 +3,9 @@ import { defineConfig } from 'vitest/config';
 
 const at = (path: string): string => fileURLToPath(new URL(path, import.meta.url));
 
+/** Long corpora (`*.long.spec.ts`) run with `npm run test:long` only. */
+const long = process.env['TALLYSTONE_LONG'] === '1';
+
 /** Unit tests of libs and server, and the reference checks. Web tests run through the Angular builder, browser tests through Playwright. */
 export default defineConfig({
   resolve: {
@@ -14,6 +17,7 @@ export default defineConfig({
   },
   test: {
     include: ['libs/**/*.spec.ts', 'server/**/*.spec.ts', 'data-demo/**/*.spec.ts', 'tests/{reference,api,faults,support}/**/*.spec.ts'],
+    exclude: ['**/node_modules/**', ...(long ? [] : ['**/*.long.spec.ts'])],
     passWithNoTests: false,
     testTimeout: 30_000,
     hookTimeout: 60_000,

@@ -1,11 +1,10 @@
-import { createHash, randomBytes } from 'node:crypto';
+import { createHash } from 'node:crypto';
 import { readFileSync, readdirSync } from 'node:fs';
-import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import { fileURLToPath } from 'node:url';
-import { Client } from 'pg';
+import type { Client } from 'pg';
 import { migrate } from '../../server/src/migrations/migrate';
-import { startPostgres } from '../../tools/postgres.mjs';
+import { type TestServer, asOwner, databaseName, dropDatabase, inDatabase, testServer } from './test-server';
 
 /** A database of a test file's own: migrated as the owner, to be used as the application. */
 export interface TestDatabase {
@@ -18,27 +17,9 @@ export interface TestDatabase {
   drop(): Promise<void>;
 }
 
-interface TestServer {
-  readonly appUrl: string;
-  readonly ownerUrl: string;
-}
-
 const root = fileURLToPath(new URL('../..', import.meta.url));
 const turn = 7_415_900;
 const templatesKept = 4;
-
-/** The server named by tools/test.mjs; without one, as when vitest is run by hand, one in the folder for temporary files that stays up. */
-async function testServer(): Promise<TestServer> {
-  const { TALLYSTONE_TEST_APP_URL: appUrl, TALLYSTONE_TEST_OWNER_URL: ownerUrl } = process.env;
-  if (appUrl && ownerUrl) return { appUrl, ownerUrl };
-  return startPostgres({ data: join(tmpdir(), `tallystone-tests-${process.getuid?.() ?? 0}`), test: true });
-}
-
-const inDatabase = (url: string, name: string): string => {
-  const address = new URL(url);
-  address.pathname = `/${name}`;
-  return address.href;
-};
 
 /** Changes whenever a migration does: a template made from other migrations is not used. */
 function migrationsStamp(): string {
@@ -94,30 +75,18 @@ async function makeTemplate(client: Client, server: TestServer, template: string
 export async function createTestDatabase(): Promise<TestDatabase> {
   const server = await testServer();
   const template = `template_${migrationsStamp()}`;
-  const name = `test_${process.pid}_${randomBytes(5).toString('hex')}`;
-  const client = new Client({ connectionString: server.ownerUrl });
-  await client.connect();
-  try {
+  const name = databaseName();
+  await asOwner(server, async (client) => {
     // Copies cannot run beside each other: the template must have no other session.
     await client.query('SELECT pg_advisory_lock($1)', [turn]);
     await sweep(client, template);
     await makeTemplate(client, server, template);
     await client.query(`CREATE DATABASE "${name}" TEMPLATE "${template}"`);
-  } finally {
-    await client.end();
-  }
+  });
   return {
     name,
     appUrl: inDatabase(server.appUrl, name),
     ownerUrl: inDatabase(server.ownerUrl, name),
-    async drop() {
-      const owner = new Client({ connectionString: server.ownerUrl });
-      await owner.connect();
-      try {
-        await owner.query(`DROP DATABASE IF EXISTS "${name}" WITH (FORCE)`);
-      } finally {
-        await owner.end();
-      }
-    },
+    drop: () => dropDatabase(server, name).then(() => undefined),
   };
 }

@@ -1,0 +1,11 @@
+import { install } from './installation';
+
+/** Starts Tallystone with its demo before the browser tests and stops it after them; the tests find where in the environment. */
+export default async function setUp(): Promise<() => Promise<void>> {
+  const installation = await install({ demo: true });
+  process.env['TALLYSTONE_E2E_URL'] = installation.url;
+  process.env['TALLYSTONE_E2E_SIGN_INS'] = JSON.stringify(installation.signIns);
+  process.env['TALLYSTONE_E2E_DATA'] = installation.dataFolder;
+  process.env['TALLYSTONE_E2E_DATABASE'] = installation.appUrl;
+  return () => installation.stop();
+}
