@@ -1,0 +1,51 @@
+import type { SampleAbility } from '@tallystone/contracts/samples/abilities';
+import type { Actor } from '../models/person';
+import { type Decision, allowed, forbidden, hidden } from './decision';
+import { type ModelMembership, canDevelopModel, canReadModel } from './models';
+
+/** What is known of a sample here. */
+export interface SampleStanding {
+  readonly model: ModelMembership;
+  readonly read: boolean;
+  readonly definitions: number;
+  readonly busy: boolean;
+}
+
+export const canListSamples = canReadModel;
+export const canAddSample = canDevelopModel;
+export const canReadSample = (person: Actor, sample: SampleStanding): Decision => canReadModel(person, sample.model);
+
+/** An upload belongs to whoever began it; for anyone else it is not there. */
+export function canSendUpload(person: Actor, model: ModelMembership, uploadedBy: string): Decision {
+  const develops = canDevelopModel(person, model);
+  return develops.allowed && uploadedBy !== person.id ? hidden : develops;
+}
+
+/** Reading choices can be made anew until a definition rests on the columns. */
+export function canReadFile(person: Actor, sample: SampleStanding): Decision {
+  const develops = canDevelopModel(person, sample.model);
+  if (!develops.allowed) return develops;
+  return sample.definitions === 0 ? allowed : forbidden('A confirmed definition rests on this reading. Upload the file as a new sample to read it otherwise.');
+}
+
+export function canDefineSample(person: Actor, sample: SampleStanding): Decision {
+  const develops = canDevelopModel(person, sample.model);
+  if (!develops.allowed) return develops;
+  return sample.read ? allowed : forbidden('The file has not been read yet. Confirm how it is read first.');
+}
+
+export function canDiscardSample(person: Actor, sample: SampleStanding): Decision {
+  const develops = canDevelopModel(person, sample.model);
+  if (!develops.allowed) return develops;
+  if (sample.definitions > 0) return forbidden('A confirmed definition rests on this sample: it stays.');
+  return sample.busy ? forbidden('The file is being read. Cancel that first.') : allowed;
+}
+
+export function abilitiesOnSample(person: Actor, sample: SampleStanding): SampleAbility[] {
+  const abilities: [SampleAbility, Decision][] = [
+    ['read-file', canReadFile(person, sample)],
+    ['define', canDefineSample(person, sample)],
+    ['discard', canDiscardSample(person, sample)],
+  ];
+  return abilities.filter(([, decision]) => decision.allowed).map(([ability]) => ability);
+}

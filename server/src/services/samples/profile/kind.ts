@@ -1,0 +1,104 @@
+import type { ColumnFlag } from '@tallystone/contracts/samples/columns';
+import type { ColumnKind } from '@tallystone/contracts/samples/reading';
+import { type NumberFault, type NumberReader, judgeFormat } from '../../../reading/index';
+
+/** Rows of one distinct text of a column that is not missing. */
+export interface Counted {
+  readonly text: string;
+  readonly count: number;
+}
+
+export interface JudgedKind {
+  readonly kind: ColumnKind;
+  /** What speaks against it, or null. */
+  readonly against: string | null;
+  readonly flags: readonly ColumnFlag[];
+}
+
+/** A column counts as numbers when this share of its rows are numbers; the rest is counted and shown, never dropped. */
+const mostlyNumbers = 0.95;
+
+const faultWords: Record<NumberFault, string> = {
+  empty: 'empty',
+  blank: 'blanks only',
+  'not-a-number-word': '“not a number”',
+  infinity: 'infinity',
+  hexadecimal: 'hexadecimal',
+  'too-large': 'too large for a number',
+  'too-small': 'too small for a number',
+  'other-digits': 'digits of another script',
+  text: 'text',
+};
+
+/** A calendar date in the one order that needs no guessing (ISO 8601, YYYY-MM-DD). */
+export function isIsoDate(text: string): boolean {
+  const match = /^(\d{4})-(\d{2})-(\d{2})$/.exec(text);
+  if (!match) return false;
+  const [year, month, day] = [Number(match[1]), Number(match[2]), Number(match[3])];
+  return month >= 1 && month <= 12 && day >= 1 && day <= new Date(Date.UTC(year, month, 0)).getUTCDate() && year > 0;
+}
+
+const otherDate = /^(\d{1,2})[./-](\d{1,2})[./-](\d{2}|\d{4})$/;
+
+/** What kind of values a column holds, from its distinct texts without the missing ones. */
+export function judgeKind(values: readonly Counted[], reader: NumberReader): JudgedKind {
+  const total = sum(values);
+  if (total === 0) return { kind: 'categorical', against: null, flags: [] };
+  const notNumbers = values.filter(({ text }) => Number.isNaN(reader.read(text)));
+  const odd = sum(notNumbers);
+  if (odd === 0) return { kind: 'numeric', against: null, flags: [] };
+  if (total - odd >= mostlyNumbers * total) {
+    const finding = `${thin(odd)} of ${thin(total)} values are no numbers: ${listed(notNumbers, (text) => ` (${faultWords[reader.fault(text)]})`)}.`;
+    return { kind: 'numeric', against: finding, flags: [{ code: 'unreadable-numbers', weight: 'look', finding }] };
+  }
+  const notDates = values.filter(({ text }) => !isIsoDate(text));
+  const oddDates = sum(notDates);
+  if (total - oddDates >= mostlyNumbers * total) {
+    if (oddDates === 0) return { kind: 'date', against: null, flags: [] };
+    const finding = `${thin(oddDates)} of ${thin(total)} values are no dates (YYYY-MM-DD): ${listed(notDates)}.`;
+    return { kind: 'date', against: finding, flags: [{ code: 'doubtful-dates', weight: 'look', finding }] };
+  }
+  return { kind: 'categorical', ...doubtful(values, total, total - odd, reader) };
+}
+
+/** A column of texts that look like something else: numbers written otherwise, dates in an order that has to be asked for. */
+function doubtful(values: readonly Counted[], total: number, numbers: number, reader: NumberReader): Omit<JudgedKind, 'kind'> {
+  const dates = values.filter(({ text }) => otherDate.test(text));
+  if (sum(dates) >= mostlyNumbers * total) {
+    const pairs = dates.map(({ text }) => otherDate.exec(text)).map((match) => [Number(match?.[1]), Number(match?.[2])]);
+    const dayFirst = pairs.some(([first]) => first > 12);
+    const monthFirst = pairs.some(([, second]) => second > 12);
+    const order =
+      dayFirst && !monthFirst ? 'with the day first' : monthFirst && !dayFirst ? 'with the month first' : 'day first or month first cannot be told';
+    const finding = `Dates such as ${dates[0].text} (${order}). Only ISO dates (YYYY-MM-DD) are used as dates; write them so in the file to split by date.`;
+    return { against: finding, flags: [{ code: 'doubtful-dates', weight: 'look', finding }] };
+  }
+  const judged = judgeFormat(
+    values.map(({ text }) => text),
+    values.map(({ count }) => count),
+  );
+  if (judged.numbers >= mostlyNumbers * total) {
+    const { decimal, thousands } = judged.format;
+    const sign = thousands === null ? '' : ` and “${thousands === '\u00a0' || thousands === '\u202f' ? 'narrow blank' : thousands}” between thousands`;
+    const example = values.find(({ text }) => Number.isNaN(reader.read(text)))?.text ?? '';
+    const finding = `Numbers written with “${decimal}” as decimal sign${sign} (${example}): change the reading choices to use them as numbers.`;
+    return { against: finding, flags: [{ code: 'numbers-as-text', weight: 'look', finding }] };
+  }
+  if (numbers * 2 >= total) {
+    const texts = values.filter(({ text }) => Number.isNaN(reader.read(text)));
+    const finding = `${thin(numbers)} of ${thin(total)} values are numbers, the others are not: ${listed(texts)}.`;
+    return { against: finding, flags: [{ code: 'numbers-as-text', weight: 'look', finding }] };
+  }
+  return { against: null, flags: [] };
+}
+
+const sum = (values: readonly Counted[]): number => values.reduce((total, { count }) => total + count, 0);
+
+function listed(values: readonly Counted[], more: (text: string) => string = () => ''): string {
+  const sorted = [...values].sort((a, b) => b.count - a.count || (a.text < b.text ? -1 : 1));
+  const shown = sorted.slice(0, 5).map(({ text, count }) => `${JSON.stringify(text.slice(0, 40))}${more(text)} ${thin(count)}×`);
+  return shown.join(', ') + (sorted.length > 5 ? ` and ${thin(sorted.length - 5)} more` : '');
+}
+
+/** Whole numbers with a thin space between thousands. */
+export const thin = (value: number): string => String(value).replace(/\B(?=(\d{3})+(?!\d))/g, '\u2009');

@@ -1,0 +1,132 @@
+import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
+import { describe, expect, it } from 'vitest';
+import { numberReader } from '../../../reading/index';
+import { sourceOf, type TextColumn } from '../../../replay/source';
+import { DuplicateRows } from './duplicates';
+import { isIsoDate } from './kind';
+import { suspectLeakage } from './leakage';
+import { hashText, personalColumn } from './personal';
+import { profileColumn } from './profile-column';
+
+const choices: ReadingChoices = { delimiter: ',', encoding: 'utf-8', decimal: '.', thousands: null, trim: true, missing: ['', 'NA'] };
+const column = (values: readonly string[]): TextColumn => sourceOf({ c: values }).column('c') as TextColumn;
+const profile = (values: readonly string[], name = 'c', chosen = choices) => profileColumn(name, 0, column(values), chosen, null);
+const codes = (values: readonly string[], name = 'c', chosen = choices): string[] => profile(values, name, chosen).flags.map((flag) => flag.code);
+const many = (count: number, make: (k: number) => string): string[] => Array.from({ length: count }, (_, k) => make(k));
+
+describe('what the quality table says of a column', () => {
+  it('counts missing tokens apart, never as zero', () => {
+    const found = profile(['1', '', 'NA', '0', '2', '']);
+    expect(found).toMatchObject({ kind: 'numeric', missing: 3, distinct: 3, rows: 6 });
+    expect(found.missingTokens).toEqual([
+      { value: '', count: 2 },
+      { value: 'NA', count: 1 },
+    ]);
+    expect(found.numeric).toMatchObject({ smallest: 0, largest: 2, mean: 1 });
+  });
+
+  // By hand: place p(n - 1) of 1 2 3 4 10 20, straight between neighbours; squares about 20/3 add up to 790/3, over n - 1 = 5.
+  it('gives type 7 quantiles and the standard deviation', () => {
+    const { numeric } = profile(['10', '1', '3', '2', '20', '4']);
+    const at = (share: number): number | undefined => numeric?.quantiles.find((quantile) => quantile.share === share)?.value;
+    expect([at(0.25), at(0.5), at(0.75)]).toEqual([2.25, 3.5, 8.5]);
+    expect(numeric?.standardDeviation).toBeCloseTo(Math.sqrt(158 / 3), 12);
+  });
+
+  it('lets every value fall in one bar of the histogram', () => {
+    const { numeric } = profile(many(997, (k) => String(((k * 7919) % 997) / 10)));
+    expect(numeric?.histogram.counts.reduce((a, b) => a + b)).toBe(997);
+    expect(numeric?.histogram.edges.length).toBe((numeric?.histogram.counts.length ?? 0) + 1);
+  });
+
+  it.each([
+    ['NaN', '“not a number”'],
+    ['Inf', 'infinity'],
+    ['1e309', 'too large for a number'],
+    ['0x10', 'hexadecimal'],
+    ['\u0664\u0662', 'digits of another script'],
+  ])('counts %s in a column of numbers and says why it is none', (token, why) => {
+    const found = profile([...many(99, String), token]);
+    expect(found.kind).toBe('numeric');
+    expect(found.flags.find((flag) => flag.code === 'unreadable-numbers')?.finding).toContain(why);
+    expect(found.numeric?.largest).toBe(98);
+  });
+
+  it('sets constant and empty columns to not used with the reason', () => {
+    expect(profile(many(50, () => ''))).toMatchObject({ suggestedRole: 'not used', suggestion: 'All 50 values are missing.' });
+    expect(profile(many(50, () => 'x'))).toMatchObject({ suggestedRole: 'not used', suggestion: 'Always "x".' });
+  });
+
+  it('asks for the reading choices where numbers are written otherwise', () => {
+    expect(codes(many(40, (k) => `${k},5`))).toContain('numbers-as-text');
+    expect(codes(many(40, (k) => `${k},5`), 'c', { ...choices, decimal: ',' })).toEqual([]);
+  });
+
+  it('asks day or month first, and takes ISO dates as certain', () => {
+    expect(profile(many(40, (k) => `0${(k % 9) + 1}/04/2024`)).flags[0].finding).toContain('day first or month first cannot be told');
+    expect(profile(many(40, (k) => `2024-04-${String((k % 30) + 1).padStart(2, '0')}`))).toMatchObject({ kind: 'date', date: { first: '2024-04-01', last: '2024-04-30' } });
+    expect([isIsoDate('2023-02-29'), isIsoDate('2024-02-29'), isIsoDate('2024-13-01')]).toEqual([false, true, false]);
+  });
+
+  it('suspects -999 and runs of nines, and not the end of a range', () => {
+    const withCode = profile([...many(300, (k) => String(k % 120)), ...many(20, () => '-999')]);
+    expect(withCode.specialSuspects.map(({ value }) => value)).toEqual(['-999']);
+    expect(profile(many(1000, (k) => String(k % 100))).specialSuspects).toEqual([]);
+    expect(profile([...many(300, (k) => String(k % 40)), ...many(20, () => '9999'), ...many(9, () => '9998')]).specialSuspects[0].value).toBe('9999');
+  });
+
+  it('suggests roles from the headings of a lender', () => {
+    const flags = ['0', '1', '0', '0', '1'];
+    expect(profile(flags, 'bad').suggestedRole).toBe('outcome');
+    expect(profile(['declined', 'accepted'], 'decision').suggestedRole).toBe('decision');
+    expect(profile(['2024-01-01', '2024-01-02'], 'applied_on').suggestedRole).toBe('application date');
+    expect(profile(['f', 'm'], 'gender')).toMatchObject({ suggestedProtected: true });
+    expect(profile(['12', '40'], 'account_age_months').flags).toEqual([]);
+    expect(profile(['41', '40'], 'age').flags[0].code).toBe('looks-like-protected');
+    expect(profile(['1.0', '2.5', '1.0'], 'weight').suggestedRole).toBe('weight');
+  });
+});
+
+describe('columns that identify people', () => {
+  const found = (name: string, values: readonly string[]) => {
+    const { codes: rows, texts } = column(values);
+    const counts = new Uint32Array(texts.length);
+    for (const code of rows) counts[code]++;
+    return personalColumn(name, texts, counts, (text) => text === '')?.kind ?? null;
+  };
+  it('are found by their values or their heading', () => {
+    expect(found('contact', many(40, (k) => `someone${k}@saltmarsh.example`))).toBe('email');
+    expect(found('last_name', ['Marsh', 'Reed'])).toBe('name');
+    expect(found('application_id', many(40, (k) => `SM-${k}`))).toBe('identifier');
+    expect(found('passport', ['X1'])).toBe('identifier');
+  });
+  it('are not amounts, dates or categories', () => {
+    expect(found('income', many(400, (k) => (k * 13.37).toFixed(2)))).toBeNull();
+    expect(found('applied_on', many(40, (k) => `2024-01-${String((k % 28) + 1).padStart(2, '0')}`))).toBeNull();
+    expect(found('region', many(40, (k) => ['north', 'south'][k % 2]))).toBeNull();
+  });
+  it('keep equal values equal under the key, and only under the key', () => {
+    const key = Buffer.alloc(32, 7);
+    expect(hashText(key, 'SM-1')).toBe(hashText(key, 'SM-1'));
+    expect(hashText(key, 'SM-1')).not.toBe(hashText(Buffer.alloc(32, 8), 'SM-1'));
+  });
+});
+
+describe('leakage and duplicates', () => {
+  it('flags a column that was made after the outcome', () => {
+    const outcome = Uint8Array.from({ length: 1000 }, (_, k) => (k % 10 === 0 ? 0 : 1));
+    const collected = column(many(1000, (k) => (k % 10 === 0 ? String(100 + k) : '0')));
+    const noise = column(many(1000, (k) => String((k * 7919) % 1000)));
+    const reader = numberReader(choices);
+    expect(suspectLeakage(collected, () => false, outcome, reader)?.code).toBe('possible-leakage');
+    expect(suspectLeakage(noise, () => false, outcome, reader)).toBeNull();
+  });
+
+  it('counts records that stood before, in all columns only', () => {
+    const rows = new DuplicateRows();
+    const segment = (values: readonly string[]) => column(values) as { codes: Uint8Array; texts: string[] };
+    rows.add([segment(['1', '1', '2']), segment(['a', 'b', 'a'])], 3);
+    rows.add([segment(['1', '2', '1']), segment(['a', 'b', 'a'])], 3);
+    expect(rows.count()).toBe(2);
+  });
+});

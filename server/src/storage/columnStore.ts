@@ -1,0 +1,95 @@
+import type { Sequelize, Transaction } from 'sequelize';
+import { rows } from '../database/sql';
+import { type ColumnSource, type TextColumn, codesFor } from '../replay/source';
+import { type TextSegment, decodeSegment, encodeSegment } from './segmentCoding';
+
+/** Values per segment of a column: 2 bytes tell any of them apart. */
+export const segmentRows = 65_536;
+
+/** Columns of one segment are written together; a statement takes at most this many of them (PostgreSQL: 65,535 parameters). */
+const columnsPerStatement = 50;
+
+/** Stores one segment of every column. `segment` counts from 0. */
+export async function storeSegment(
+  sequelize: Sequelize,
+  readingId: string,
+  segment: number,
+  columns: readonly { readonly position: number; readonly values: TextSegment }[],
+  tx: Transaction | null = null,
+): Promise<void> {
+  for (let from = 0; from < columns.length; from += columnsPerStatement) {
+    const part = columns.slice(from, from + columnsPerStatement);
+    const values: unknown[] = [readingId, segment];
+    const tuples = part.map(({ position, values: column }) => {
+      values.push(position, column.codes.length, encodeSegment(column));
+      return `($1::uuid, $${values.length - 2}::int, $2::int, $${values.length - 1}::int, $${values.length}::bytea)`;
+    });
+    await sequelize.query(`INSERT INTO column_segments (reading_id, position, segment, rows, content) VALUES ${tuples.join(', ')}`, {
+      bind: values,
+      transaction: tx,
+    });
+  }
+}
+
+/** The segments of one column in order, each decoded when asked for. */
+export async function* readSegmentsOf(sequelize: Sequelize, readingId: string, position: number): AsyncGenerator<TextSegment> {
+  for (let segment = 0; ; segment++) {
+    const [found] = await rows<{ content: Buffer }>(
+      sequelize,
+      'SELECT content FROM column_segments WHERE reading_id = $1 AND position = $2 AND segment = $3',
+      [readingId, position, segment],
+    );
+    if (!found) return;
+    yield decodeSegment(found.content);
+  }
+}
+
+/** One whole column in memory, with one dictionary over all its segments. */
+export async function readStoredColumn(sequelize: Sequelize, readingId: string, position: number, count: number): Promise<TextColumn> {
+  const places = new Map<string, number>();
+  const texts: string[] = [];
+  const parts: { codes: TextSegment['codes']; places: Uint32Array }[] = [];
+  for await (const segment of readSegmentsOf(sequelize, readingId, position)) {
+    const mapped = Uint32Array.from(segment.texts, (text) => {
+      const known = places.get(text);
+      if (known !== undefined) return known;
+      places.set(text, texts.length);
+      return texts.push(text) - 1;
+    });
+    parts.push({ codes: segment.codes, places: mapped });
+  }
+  const codes = codesFor(texts.length, count);
+  let row = 0;
+  for (const part of parts) for (const code of part.codes) codes[row++] = part.places[code];
+  if (row !== count) throw new Error(`Column ${position} of reading ${readingId} has ${row} of ${count} rows`);
+  return { kind: 'texts', codes, texts };
+}
+
+/**
+ * The columns of a sample that has been read, as the chain takes them. Names what is needed: each column stays in memory as long as the
+ * source does. A name that the sample does not have gives no column.
+ *
+ * @throws when there is no such sample or it has not been read
+ * @example
+ * const source = await openSample(sequelize, sampleId, ['bad', 'age']);
+ * const prepared = prepare(specification, source);
+ */
+export async function openSample(sequelize: Sequelize, sampleId: string, names: Iterable<string>): Promise<ColumnSource> {
+  const [sample] = await rows<{ readingId: string | null; rows: number }>(
+    sequelize,
+    'SELECT reading_id AS "readingId", rows FROM samples WHERE id = $1',
+    [sampleId],
+  );
+  if (!sample?.readingId) throw new Error(`Sample ${sampleId} has not been read`);
+  const wanted = new Set(names);
+  const stored = await rows<{ position: number; name: string }>(
+    sequelize,
+    'SELECT position, name FROM sample_columns WHERE reading_id = $1 ORDER BY position',
+    [sample.readingId],
+  );
+  const columns = new Map<string, TextColumn>();
+  for (const { position, name } of stored) {
+    if (wanted.has(name)) columns.set(name, await readStoredColumn(sequelize, sample.readingId, position, sample.rows));
+  }
+  return { rows: sample.rows, column: (name) => columns.get(name) };
+}
