@@ -1,4 +1,6 @@
 import { z } from 'zod';
+import { binningEvents } from '../binnings/record-events';
+import { outOfTimeEvents } from '../out-of-time/record-events';
 import { peopleEvents } from '../people/record-events';
 import { runEvents } from '../runs/record-events';
 import { sessionEvents } from '../session/record-events';
@@ -7,7 +9,7 @@ import { recordEvents } from './record-events';
 /**
  * Every act the record knows. An entity adds its list here: nothing else is accepted by `appendRecord`.
  */
-export const RecordEvent = z.discriminatedUnion('action', [...sessionEvents, ...peopleEvents, ...runEvents, ...recordEvents]);
+export const RecordEvent = z.discriminatedUnion('action', [...sessionEvents, ...peopleEvents, ...runEvents, ...recordEvents, ...outOfTimeEvents, ...binningEvents]);
 export type RecordEvent = z.input<typeof RecordEvent>;
 
 export const recordActions: readonly string[] = RecordEvent.options.map((option) => option.shape.action.value);

@@ -1,4 +1,5 @@
 import type { Sequelize } from 'sequelize';
+import { defineBinning } from './binning';
 import { defineInvitation } from './invitation';
 import { defineModel } from './model';
 import { definePerson } from './person';
@@ -14,4 +15,5 @@ export function defineModels(sequelize: Sequelize): void {
   defineRun(sequelize);
   defineModel(sequelize);
   defineSample(sequelize);
+  defineBinning(sequelize);
 }

@@ -1,0 +1,50 @@
+/** How WOE runs along the value axis; "none" where there are no two bins with rows. */
+export type ObservedTrend = 'rising' | 'falling' | 'one-peak' | 'one-valley' | 'mixed' | 'none';
+
+/**
+ * The trend of WOE over bins in the order of the value axis.
+ * @param rows bins without rows are passed over
+ * @example trendOf([1.1, 0.2, -0.9], [10, 10, 10]) // 'falling'
+ */
+export function trendOf(woe: ArrayLike<number>, rows: ArrayLike<number>): ObservedTrend {
+  const values: number[] = [];
+  for (let i = 0; i < woe.length; i++) if (rows[i] > 0) values.push(woe[i]);
+  if (values.length < 2) return 'none';
+  const turns: number[] = [];
+  for (let i = 1; i < values.length; i++) {
+    const direction = Math.sign(values[i] - values[i - 1]);
+    if (direction !== 0 && direction !== turns.at(-1)) turns.push(direction);
+  }
+  if (turns.length === 0) return 'none';
+  if (turns.length === 1) return turns[0] > 0 ? 'rising' : 'falling';
+  if (turns.length === 2) return turns[0] > 0 ? 'one-peak' : 'one-valley';
+  return 'mixed';
+}
+
+/**
+ * Gini of a characteristic by its bins: 2 AUC - 1 with the bins ordered by WOE, ties counting one half.
+ * @param goods weighted goods of each bin
+ * @example giniOfBins([90, 10], [10, 90], [2, -2]) // 0.8
+ * Source: P(good above bad) + half of ties, as the area under the receiver operating curve (Hanley and McNeil 1982, from memory).
+ */
+export function giniOfBins(goods: ArrayLike<number>, bads: ArrayLike<number>, woe: ArrayLike<number>): number {
+  const order = Array.from({ length: woe.length }, (_, bin) => bin).sort((a, b) => woe[a] - woe[b]);
+  let totalGoods = 0;
+  let totalBads = 0;
+  let above = 0;
+  let place = 0;
+  while (place < order.length) {
+    let tiedGoods = 0;
+    let tiedBads = 0;
+    const value = woe[order[place]];
+    while (place < order.length && woe[order[place]] === value) {
+      tiedGoods += goods[order[place]];
+      tiedBads += bads[order[place]];
+      place++;
+    }
+    above += tiedGoods * (totalBads + tiedBads / 2);
+    totalGoods += tiedGoods;
+    totalBads += tiedBads;
+  }
+  return totalGoods > 0 && totalBads > 0 ? (2 * above) / (totalGoods * totalBads) - 1 : 0;
+}

@@ -1,0 +1,135 @@
+import type { BenchReading, BinFigures } from './reading';
+import type { PartitionName } from './types';
+
+export interface SizeLimits {
+  readonly smallestShare: number;
+  readonly smallestGoods: number;
+  readonly smallestBads: number;
+}
+
+export type WarningCode =
+  | 'small-bin'
+  | 'zero-cell'
+  | 'not-monotone'
+  | 'reversed-in-hold-out'
+  | 'reversed-out-of-time'
+  | 'high-information-value'
+  | 'one-bin';
+
+export interface BenchWarning {
+  readonly code: WarningCode;
+  readonly message: string;
+  /** Indices of the bins concerned. */
+  readonly bins: readonly number[];
+}
+
+/** Above this an information value asks for a look at leakage. Siddiqi 2006, from memory; lender policy. */
+export const leakageSuspect = 0.5;
+/** One-sided 5 % point of the normal distribution: smaller reversals are what chance does. */
+const beyondChance = 1.6449;
+
+/**
+ * What a careful analyst would look at in the bins of one characteristic. Special and missing bins are as large as they are, so only bins of
+ * cuts and groups count as small.
+ */
+export function benchWarnings(reading: BenchReading, limits: SizeLimits): BenchWarning[] {
+  const warnings: BenchWarning[] = [];
+  const filled = reading.bins.filter((bin) => (bin.figures.development?.rows ?? 0) > 0);
+  if (filled.length < 2) {
+    warnings.push({ code: 'one-bin', message: 'Every development row lies in one bin: it tells nobody apart.', bins: [0] });
+    return warnings;
+  }
+  const small = indices(reading, (bin, kind) => (kind === 'cut' || kind === 'group') && bin.rows > 0 && tooSmall(bin, limits));
+  if (small.length > 0) {
+    const names = small.map((bin) => reading.bins[bin].label).join('; ');
+    warnings.push({
+      code: 'small-bin',
+      message: `${small.length === 1 ? 'A bin is' : `${small.length} bins are`} smaller than the constraints allow: ${names}.`,
+      bins: small,
+    });
+  }
+  const zero = indices(reading, (bin) => bin.rows > 0 && (bin.goods === 0 || bin.bads === 0));
+  if (zero.length > 0) {
+    const names = zero.map(
+      (bin) => `${reading.bins[bin].label} has no ${reading.bins[bin].figures.development?.goods === 0 ? 'good' : 'bad'}`,
+    );
+    warnings.push({ code: 'zero-cell', message: `${names.join('; ')}: its WOE is smoothed.`, bins: zero });
+  }
+  if (reading.trend === 'one-peak' || reading.trend === 'one-valley' || reading.trend === 'mixed') {
+    const shape =
+      reading.trend === 'mixed'
+        ? 'changes direction more than once'
+        : reading.trend === 'one-peak'
+          ? 'rises, then falls'
+          : 'falls, then rises';
+    warnings.push({ code: 'not-monotone', message: `WOE ${shape} along the values.`, bins: [] });
+  }
+  for (const [partition, code, words] of [
+    ['holdOut', 'reversed-in-hold-out', 'in hold-out'],
+    ['outOfTime', 'reversed-out-of-time', 'out of time'],
+  ] as const) {
+    const bins = reversedBins(reading, partition);
+    if (bins.length === 0) continue;
+    const names = bins.map((bin) => reading.bins[bin].label).join('; ');
+    warnings.push({
+      code,
+      message: `The order of risk is reversed ${words}, beyond chance, up to and including ${names}.`,
+      bins,
+    });
+  }
+  if (reading.informationValue > leakageSuspect) {
+    warnings.push({
+      code: 'high-information-value',
+      message: 'IV above 0.5: check that the value was known at application.',
+      bins: [],
+    });
+  }
+  return warnings;
+}
+
+/**
+ * Bins that stand the other way round to their neighbour than in development: for numeric bins the neighbour on the axis, for groups the
+ * next in order of risk. Counted where the difference of bad rates has the other sign and is beyond chance (two proportions, one-sided 5 %).
+ */
+export function reversedBins(reading: BenchReading, partition: PartitionName): number[] {
+  const places = reading.bins
+    .map((bin, index) => ({ bin, index }))
+    .filter(({ bin }) => (bin.kind === 'cut' || bin.kind === 'group') && (bin.figures.development?.rows ?? 0) > 0);
+  if (places[0]?.bin.kind === 'group') {
+    places.sort((a, b) => (a.bin.figures.development?.badRate ?? 0) - (b.bin.figures.development?.badRate ?? 0));
+  }
+  const reversed: number[] = [];
+  for (let i = 1; i < places.length; i++) {
+    const here = places[i].bin.figures;
+    const before = places[i - 1].bin.figures;
+    const developed = difference(before.development, here.development);
+    const seen = difference(before[partition], here[partition]);
+    if (developed === null || seen === null || developed.by === 0) continue;
+    if (Math.sign(seen.by) === -Math.sign(developed.by) && Math.abs(seen.by) > beyondChance * seen.error)
+      reversed.push(places[i].index);
+  }
+  return reversed;
+}
+
+function difference(a: BinFigures | null, b: BinFigures | null): { by: number; error: number } | null {
+  if (!a || !b || a.badRate === null || b.badRate === null) return null;
+  const pooled = (a.badRate * a.rows + b.badRate * b.rows) / (a.rows + b.rows);
+  return { by: b.badRate - a.badRate, error: Math.sqrt(pooled * (1 - pooled) * (1 / a.rows + 1 / b.rows)) };
+}
+
+function indices(reading: BenchReading, holds: (bin: BinFigures, kind: string) => boolean): number[] {
+  return reading.bins.flatMap((bin, index) =>
+    bin.figures.development && holds(bin.figures.development, bin.kind) ? [index] : [],
+  );
+}
+
+function tooSmall(bin: BinFigures, limits: SizeLimits): boolean {
+  return bin.share < limits.smallestShare || bin.goods < limits.smallestGoods || bin.bads < limits.smallestBads;
+}
+
+/** Usual reading of IV: under 0.02 none, to 0.1 weak, to 0.3 medium, above strong. N. Siddiqi, Credit Risk Scorecards, Wiley 2006, from memory. */
+export function readingOfIv(informationValue: number): 'none' | 'weak' | 'medium' | 'strong' {
+  if (informationValue < 0.02) return 'none';
+  if (informationValue < 0.1) return 'weak';
+  return informationValue < 0.3 ? 'medium' : 'strong';
+}

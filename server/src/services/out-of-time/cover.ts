@@ -1,0 +1,120 @@
+import type { OutOfTimeCover, OutOfTimeState } from '@tallystone/contracts/out-of-time/schema';
+import type { Sequelize, Transaction } from 'sequelize';
+import { rows } from '../../database/sql';
+import type { Actor } from '../../models/person';
+import { canOpenOutOfTime } from '../../policies/out-of-time';
+import { conflict } from '../../problems/problem';
+import { type FoundModel, findModel } from '../models/find-model';
+import { appendRecord } from '../record/append';
+
+/** A sample definition as far as its cover needs it. */
+export interface CoveredDefinition {
+  readonly id: string;
+  readonly outOfTimeRows: number;
+  readonly model: FoundModel;
+}
+
+/** The definition with its model, or null. */
+export async function findCovered(
+  sequelize: Sequelize,
+  definitionId: string,
+  tx: Transaction | null = null,
+): Promise<CoveredDefinition | null> {
+  const [found] = await rows<{ modelId: string; outOfTimeRows: number }>(
+    sequelize,
+    `SELECT model_id AS "modelId", (counts #>> '{partitions,outOfTime,rows}')::int AS "outOfTimeRows" FROM sample_definitions WHERE id = $1`,
+    [definitionId],
+    tx,
+  );
+  const model = found && (await findModel(sequelize, found.modelId, tx));
+  return model ? { id: definitionId, outOfTimeRows: found.outOfTimeRows, model } : null;
+}
+
+/** True once somebody has opened the out-of-time figures of a sample definition; until then no service hands any of them out. */
+export async function outOfTimeOpened(
+  sequelize: Sequelize,
+  definitionId: string,
+  tx: Transaction | null = null,
+): Promise<boolean> {
+  const [found] = await rows<{ opened: boolean }>(
+    sequelize,
+    'SELECT EXISTS (SELECT 1 FROM out_of_time_openings WHERE definition_id = $1) AS opened',
+    [definitionId],
+    tx,
+  );
+  return found.opened;
+}
+
+/** "none" where the definition has no such rows. */
+export async function outOfTimeState(
+  sequelize: Sequelize,
+  definitionId: string,
+  tx: Transaction | null = null,
+): Promise<OutOfTimeState> {
+  const [found] = await rows<{ rows: number; opened: boolean }>(
+    sequelize,
+    `SELECT (counts #>> '{partitions,outOfTime,rows}')::int AS rows,
+            EXISTS (SELECT 1 FROM out_of_time_openings o WHERE o.definition_id = d.id) AS opened
+       FROM sample_definitions d WHERE id = $1`,
+    [definitionId],
+    tx,
+  );
+  if (!found || found.rows === 0) return 'none';
+  return found.opened ? 'opened' : 'covered';
+}
+
+export async function readCover(
+  sequelize: Sequelize,
+  person: Actor,
+  definition: CoveredDefinition,
+  tx: Transaction | null = null,
+): Promise<OutOfTimeCover> {
+  const openings = await rows<{ id: string; reason: string; by: string; at: Date }>(
+    sequelize,
+    `SELECT o.id, o.reason, p.name AS by, o.opened_at AS at FROM out_of_time_openings o JOIN people p ON p.id = o.opened_by
+      WHERE o.definition_id = $1 ORDER BY o.number`,
+    [definition.id],
+    tx,
+  );
+  const state = definition.outOfTimeRows === 0 ? 'none' : openings.length > 0 ? 'opened' : 'covered';
+  return {
+    definitionId: definition.id,
+    state,
+    openings: openings.map((opening) => ({ ...opening, at: opening.at.toISOString() })),
+    abilities: state !== 'none' && canOpenOutOfTime(person, definition.model).allowed ? ['open'] : [],
+  };
+}
+
+/**
+ * Lifts the cover, or adds a further look with its own reason. Recorded in the same transaction.
+ *
+ * @throws Problem 409 where the definition has no out-of-time rows
+ */
+export async function openOutOfTime(
+  sequelize: Sequelize,
+  tx: Transaction,
+  person: Actor,
+  definition: CoveredDefinition,
+  reason: string,
+): Promise<void> {
+  if (definition.outOfTimeRows === 0)
+    throw conflict('no-out-of-time', 'This sample has no out-of-time rows: there is nothing to open.');
+  // One look at a time, so that each knows how many there were before.
+  await rows(sequelize, 'SELECT pg_advisory_xact_lock(hashtext($1))', [`out-of-time ${definition.id}`], tx);
+  const [made] = await rows<{ number: number }>(
+    sequelize,
+    `INSERT INTO out_of_time_openings (definition_id, number, reason, opened_by)
+     SELECT $1, count(*) + 1, $2, $3 FROM out_of_time_openings WHERE definition_id = $1 RETURNING number`,
+    [definition.id, reason, person.id],
+    tx,
+  );
+  await appendRecord(tx, {
+    actor: person,
+    action: 'out-of-time.opened',
+    entity: 'sample-definition',
+    entityId: definition.id,
+    modelId: definition.model.id,
+    detail: { earlier: made.number - 1 },
+    reason,
+  });
+}
