@@ -5,7 +5,7 @@ import { Session } from '../core/session';
 import { Shortcuts } from '../core/shortcuts';
 import { UnsavedWork } from '../core/unsaved-changes';
 import { Ask } from '../ui/ask';
-import { Mark } from './mark';
+import { Mark } from '../ui/mark';
 import { PersonMenu } from './person-menu';
 import { places } from './places';
 import { ShortcutList } from './shortcut-list';

@@ -1,6 +1,6 @@
 import { ChangeDetectionStrategy, Component } from '@angular/core';
 import { MatButtonModule } from '@angular/material/button';
-import { Mark } from './mark';
+import { Mark } from '../ui/mark';
 
 /** Shown when the server cannot be asked who is here: there is nothing to show yet but this. */
 @Component({

@@ -28,14 +28,20 @@ const rowHeight = 33; // px; fixed while rows are windowed, so that the scroll b
 const spare = 12; // rows kept ready above and below the view
 
 /**
- * The content of one column's cells, where text is not enough.
+ * The content of one column's cells, where text is not enough. Give the rows as well, and `row` has their type.
  *
- * @example <ng-template tsCell="state" let-row><ts-status tone="kept">{{ row.state }}</ts-status></ng-template>
+ * @example <ng-template tsCell="state" [tsCellRows]="fits()" let-row><ts-status tone="kept">{{ row.state }}</ts-status></ng-template>
  */
 @Directive({ selector: 'ng-template[tsCell]' })
-export class CellTemplate {
+export class CellTemplate<Row> {
   readonly tsCell = input.required<string>();
+  /** Only for the type of `row`. */
+  readonly tsCellRows = input<readonly Row[]>();
   readonly template = inject<TemplateRef<{ $implicit: unknown }>>(TemplateRef);
+
+  static ngTemplateContextGuard<Row>(_cell: CellTemplate<Row>, _context: unknown): _context is { $implicit: Row } {
+    return true;
+  }
 }
 
 export interface TableSort {
@@ -75,7 +81,7 @@ export class DenseTable<Row> {
   readonly activatable = input(false);
   readonly activate = output<Row>();
 
-  private readonly cells = contentChildren(CellTemplate);
+  private readonly cells = contentChildren<CellTemplate<Row>>(CellTemplate);
   private readonly scroller = viewChild.required<ElementRef<HTMLElement>>('scroller');
   private readonly top = signal(0);
   private readonly viewHeight = signal(560);

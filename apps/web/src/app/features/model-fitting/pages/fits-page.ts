@@ -90,7 +90,7 @@ export class FitsPage {
   protected readonly fits = computed(() => (this.list.hasValue() ? this.list.value().fits : []));
   protected readonly mayStart = computed(() => this.list.hasValue() && this.list.value().abilities.includes('start-fit'));
   protected readonly picked = signal<readonly string[]>([]);
-  protected readonly runsUnderWay = computed(() => this.runs.active().filter((run) => run.modelId === this.modelId() && run.kind === 'fit-path'));
+  protected readonly runsUnderWay = computed(() => this.runs.active().filter((run) => run.modelId === this.modelId() && run.kind === 'fit.path'));
   protected readonly finding = computed(() => {
     const fits = this.fits();
     if (fits.length === 0) return null;
@@ -117,7 +117,7 @@ export class FitsPage {
   constructor() {
     this.runs.finished
       .pipe(
-        filter((run) => run.modelId === this.modelId() && run.kind === 'fit-path'),
+        filter((run) => run.modelId === this.modelId() && run.kind === 'fit.path'),
         takeUntilDestroyed(inject(DestroyRef)),
       )
       .subscribe(() => this.list.reload());
