@@ -87,7 +87,7 @@ describe('generated files', () => {
         fc.constantFrom(',', ';', '\t', '|'),
         fc.constantFrom('\n', '\r\n', '\r'),
         async (rows, size, delimiter, end) => {
-          const clean = rows.map((row) => row.map((text) => text.replaceAll('\0', '').toWellFormed()));
+          const clean = rows.map((row) => row.map((text) => text.replaceAll('\0', '')));
           const header = clean[0].map((_, index) => `c${index}`);
           const bytes = Buffer.from(stringify([header, ...clean], { delimiter, record_delimiter: end, quoted: true }));
           const file = await read(bytes, { delimiter, size });

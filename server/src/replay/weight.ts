@@ -1,0 +1,29 @@
+import type { Columns } from './columns';
+import { ValueCounts, type ReplayProblem } from './problems';
+import { BAD, DECLINED, GOOD } from './types';
+
+/**
+ * Weights of the rows that enter a fit or a metric (goods, bads, declined); other rows get 0. Zero is allowed; missing, negative and
+ * unreadable weights are problems, and so are weights that are all zero.
+ */
+export function readWeights(name: string, columns: Columns, outcome: Uint8Array, problems: ReplayProblem[]): Float64Array | null {
+  const view = columns.numbers(name);
+  if (view === null) return null;
+  const weights = new Float64Array(columns.rows);
+  const faults = new ValueCounts();
+  let total = 0;
+  for (let row = 0; row < weights.length; row++) {
+    if (outcome[row] !== GOOD && outcome[row] !== BAD && outcome[row] !== DECLINED) continue;
+    const weight = view.number(row);
+    if (weight >= 0) {
+      weights[row] = weight;
+      total += weight;
+    } else {
+      faults.add(view.text(row));
+    }
+  }
+  const problem = faults.problem('bad-weight', name, (listed, rows) => `${rows} row${rows === 1 ? ' has a weight that is' : 's have weights that are'} not a number of at least 0: ${listed}.`);
+  if (problem !== null) problems.push(problem);
+  else if (total === 0) problems.push({ code: 'zero-weights', message: `The weights in "${name}" are all zero.`, where: { column: name } });
+  return weights;
+}
