@@ -2,7 +2,7 @@ import { wilsonInterval } from '../metrics/intervals';
 import { weightOfEvidence, type Smoothing } from '../binning/weight-of-evidence';
 import { binLabels } from './labels';
 import { binOfSlots, coarseCount, layoutOf, sumSlots, type BinSums } from './slots';
-import { giniOfBins, trendOf, type ObservedTrend } from './trend';
+import { giniOfBins, observedTrend, type ObservedTrend } from './trend';
 import { partitions, type BinKind, type Bins, type FineClasses, type PartitionName } from './types';
 
 /** What the specification takes when it says nothing else. */
@@ -102,7 +102,7 @@ export function readBench(fine: FineClasses, bins: Bins, smoothing: Smoothing = 
     trend:
       fine.kind === 'categorical'
         ? 'none'
-        : trendOf(
+        : observedTrend(
             woe,
             development.figures.slice(0, coarse).map((bin) => bin.rows),
           ),

@@ -1,24 +1,16 @@
+import { trendOf } from '../binning/classing';
+
 /** How WOE runs along the value axis; "none" where there are no two bins with rows. */
 export type ObservedTrend = 'rising' | 'falling' | 'one-peak' | 'one-valley' | 'mixed' | 'none';
 
 /**
  * The trend of WOE over bins in the order of the value axis.
  * @param rows bins without rows are passed over
- * @example trendOf([1.1, 0.2, -0.9], [10, 10, 10]) // 'falling'
+ * @example observedTrend([1.1, 0.2, -0.9], [10, 10, 10]) // 'falling'
  */
-export function trendOf(woe: ArrayLike<number>, rows: ArrayLike<number>): ObservedTrend {
-  const values: number[] = [];
-  for (let i = 0; i < woe.length; i++) if (rows[i] > 0) values.push(woe[i]);
-  if (values.length < 2) return 'none';
-  const turns: number[] = [];
-  for (let i = 1; i < values.length; i++) {
-    const direction = Math.sign(values[i] - values[i - 1]);
-    if (direction !== 0 && direction !== turns.at(-1)) turns.push(direction);
-  }
-  if (turns.length === 0) return 'none';
-  if (turns.length === 1) return turns[0] > 0 ? 'rising' : 'falling';
-  if (turns.length === 2) return turns[0] > 0 ? 'one-peak' : 'one-valley';
-  return 'mixed';
+export function observedTrend(woe: ArrayLike<number>, rows: ArrayLike<number>): ObservedTrend {
+  const trend = trendOf(Array.from(woe).filter((_, bin) => rows[bin] > 0));
+  return trend === 'flat' ? 'none' : trend;
 }
 
 /**

@@ -37,6 +37,7 @@ export class Solver {
   private readonly t: Float64Array;
   private penalty: ScaledPenalty;
   private curvature: Curvature | null = null;
+  private kept: Curvature | null = null;
   readonly eta: Float64Array;
   private readonly residual: Float64Array;
   private readonly root: Float64Array;
@@ -69,7 +70,9 @@ export class Solver {
     this.design.weigh(weights);
     this.penalty = scaledPenalty(this.penaltySettings, this.design);
     const { used } = this.design;
-    if (this.curvature && this.curvature.list.some((j) => !used.includes(j))) this.curvature = null;
+    const usable = (curvature: Curvature | null): boolean => curvature !== null && curvature.list.every((j) => used.includes(j));
+    if (!usable(this.curvature)) this.curvature = null;
+    if (!usable(this.kept)) this.kept = null;
     this.previousLambda = Infinity;
   }
 
@@ -167,6 +170,18 @@ export class Solver {
       if (this.t[j] !== 0 || this.penalty.absolute[j] * lambda === 0 || !known) return true;
       return Math.abs(this.gradient[j]) >= slack * lambda * this.penalty.absolute[j];
     });
+  }
+
+  /** Solves on the curvature that was kept by `keep`, if it was: no solve before this one leaves a trace in it. */
+  solveFromKept(lambda: number, options: SolveOptions): Fit {
+    if (this.kept) this.curvature = this.kept;
+    return this.solve(lambda, options);
+  }
+
+  /** Keeps the curvature at the present point, over all columns, for `solveFromKept`. */
+  keep(): void {
+    this.kept = this.curvatureAt(this.design.used);
+    this.curvature = this.kept;
   }
 
   solve(lambda: number, options: SolveOptions): Fit {

@@ -1,0 +1,46 @@
+import { requireFinite, requireThat } from '../checks';
+import { NumericError } from '../errors';
+
+/**
+ * Edges of fine classes: cuts at the quantiles of the known values, left-closed, at most `count` classes, each edge the shortest decimal that still
+ * separates the two values on its sides. A variable with at most `count` different values gets one class for each.
+ * @param values known values only, in any order
+ * @returns strictly ascending edges, at most count - 1
+ * @example fineEdges(Float64Array.of(1.237, 1.81, 2.46, 9.9), 4) // [1.8, 2, 9]
+ */
+export function fineEdges(values: Float64Array, count: number): number[] {
+  requireThat(Number.isInteger(count) && count >= 1 && count <= 250, 'count', 'the number of fine classes lies between 1 and 250.');
+  if (values.length === 0) throw new NumericError('no-rows', 'There is no known value to class.', { name: 'values' });
+  requireFinite('values', values);
+  const sorted = values.slice().sort();
+  // Where each run of equal values starts; the first has nothing below it to be separated from.
+  const starts: number[] = [];
+  for (let i = 1; i < sorted.length; i++) if (sorted[i] !== sorted[i - 1]) starts.push(i);
+  const chosen = starts.length < count ? starts : quantileStarts(starts, sorted.length, count);
+  return chosen.map((start) => shortestBetween(sorted[start - 1], sorted[start]));
+}
+
+/** The run start nearest to each quantile, each once. */
+function quantileStarts(starts: readonly number[], rows: number, count: number): number[] {
+  const chosen: number[] = [];
+  let s = 0;
+  for (let k = 1; k < count; k++) {
+    const target = (rows * k) / count;
+    while (s + 1 < starts.length && Math.abs(starts[s + 1] - target) <= Math.abs(starts[s] - target)) s++;
+    if (chosen[chosen.length - 1] !== starts[s]) chosen.push(starts[s]);
+  }
+  return chosen;
+}
+
+/** The shortest decimal c with below < c <= value; of equally short ones the largest. */
+export function shortestBetween(below: number, value: number): number {
+  if (below < 0 && value >= 0) return 0;
+  const largest = Math.max(Math.abs(below), Math.abs(value));
+  const top = Math.floor(Math.log10(largest)) + 1;
+  for (let exponent = top; exponent >= top - 17; exponent--) {
+    const multiple = Math.floor(Number(`${value}e${-exponent}`.replace(/e([+-]?\d+)e(-?\d+)/, (_, a, b) => `e${Number(a) + Number(b)}`)));
+    const candidate = Number(`${multiple}e${exponent}`);
+    if (candidate > below && candidate <= value) return candidate;
+  }
+  return value;
+}
