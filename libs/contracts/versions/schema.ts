@@ -1,5 +1,5 @@
 import { z } from 'zod';
-import { modelState } from '../models/schema';
+import { ModelState } from '../models/schema';
 
 const number = z.number();
 const sha = z.string().regex(/^[0-9a-f]{64}$/);
@@ -31,8 +31,8 @@ export const NewAct = z.discriminatedUnion('act', [
 export const ActEntry = z.object({
   id: z.uuid(),
   act: VersionAct,
-  from: modelState.nullable(),
-  to: modelState,
+  from: ModelState.nullable(),
+  to: ModelState,
   conclusion: Conclusion.nullable(),
   conditions: z.array(z.string()),
   statement: z.string(),
@@ -86,7 +86,7 @@ export const VersionSummary = z.object({
   modelName: z.string(),
   inventoryNumber: z.string(),
   number: z.int(),
-  state: modelState,
+  state: ModelState,
   /** In validation, concluded, waiting for compliance. */
   awaitingCompliance: z.boolean(),
   /** Returned to the modeller for texts. */
