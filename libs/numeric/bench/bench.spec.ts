@@ -36,8 +36,8 @@ const fine: FineClasses = {
   special: ['no record'],
   development: {
     rows: [100, 100, 100, 100, 100, 40, 60],
-    goods: [95, 90, 80, 70, 60, 30, 50],
-    bads: [5, 10, 20, 30, 40, 10, 10],
+    goods: [92, 88, 80, 74, 66, 30, 50],
+    bads: [8, 12, 20, 26, 34, 10, 10],
   },
   holdOut: { rows: [50, 50, 50, 50, 50, 20, 30], goods: [47, 46, 39, 36, 29, 15, 25], bads: [3, 4, 11, 14, 21, 5, 5] },
   outOfTime: null,
@@ -153,7 +153,13 @@ describe('warnings', () => {
       development: { ...fine.development, goods: [92, 88, 80, 74, 100, 30, 60], bads: [8, 12, 20, 26, 0, 10, 0] },
     };
     const found = benchWarnings(readBench(turned, { ...bins, edges: [20, 40] }), limits);
-    expect(found.map((warning) => warning.code)).toEqual(['small-bin', 'zero-cell', 'not-monotone', 'reversed-in-hold-out', 'high-information-value']);
+    expect(found.map((warning) => warning.code)).toEqual([
+      'small-bin',
+      'zero-cell',
+      'not-monotone',
+      'reversed-in-hold-out',
+      'high-information-value',
+    ]);
     expect(found[1].bins).toEqual([2, 4]);
   });
 

@@ -1,7 +1,7 @@
 import { layoutOf } from './slots';
 import type { Bins, FineClasses } from './types';
 
-/** A bin in words: "under 25", "25 to under 30", "55 and over"; right-closed: "up to 25", "over 25, up to 30", "over 55". */
+/** A bin in words: "under 25", "25 to under 30", "55 and over"; right-closed: "up to 25", "over 25 to 30", "over 55". */
 export function binLabels(fine: Pick<FineClasses, 'closed' | 'special'>, bins: Bins): string[] {
   return layoutOf(bins).map(({ kind, index }) => {
     if (kind === 'missing') return 'missing';
@@ -19,5 +19,5 @@ export function rangeLabel(edges: readonly number[], index: number, closed: 'lef
     return index === edges.length ? `${from} and over` : `${from} to under ${to}`;
   }
   if (index === 0) return `up to ${to}`;
-  return index === edges.length ? `over ${from}` : `over ${from}, up to ${to}`;
+  return index === edges.length ? `over ${from}` : `over ${from} to ${to}`;
 }

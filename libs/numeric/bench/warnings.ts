@@ -39,7 +39,9 @@ export function benchWarnings(reading: BenchReading, limits: SizeLimits): BenchW
     warnings.push({ code: 'one-bin', message: 'Every development row lies in one bin: it tells nobody apart.', bins: [0] });
     return warnings;
   }
-  const small = indices(reading, (bin, kind) => (kind === 'cut' || kind === 'group') && bin.rows > 0 && tooSmall(bin, limits));
+  // Shares are of rows with a known value, as in automatic classing.
+  const known = reading.bins.reduce((sum, bin) => sum + (isCoarse(bin.kind) ? (bin.figures.development?.rows ?? 0) : 0), 0);
+  const small = indices(reading, (bin, kind) => isCoarse(kind) && bin.rows > 0 && tooSmall(bin, limits, known));
   if (small.length > 0) {
     const names = small.map((bin) => reading.bins[bin].label).join('; ');
     warnings.push({
@@ -94,7 +96,7 @@ export function benchWarnings(reading: BenchReading, limits: SizeLimits): BenchW
 export function reversedBins(reading: BenchReading, partition: PartitionName): number[] {
   const places = reading.bins
     .map((bin, index) => ({ bin, index }))
-    .filter(({ bin }) => (bin.kind === 'cut' || bin.kind === 'group') && (bin.figures.development?.rows ?? 0) > 0);
+    .filter(({ bin }) => isCoarse(bin.kind) && (bin.figures.development?.rows ?? 0) > 0);
   if (places[0]?.bin.kind === 'group') {
     places.sort((a, b) => (a.bin.figures.development?.badRate ?? 0) - (b.bin.figures.development?.badRate ?? 0));
   }
@@ -123,8 +125,14 @@ function indices(reading: BenchReading, holds: (bin: BinFigures, kind: string) =
   );
 }
 
-function tooSmall(bin: BinFigures, limits: SizeLimits): boolean {
-  return bin.share < limits.smallestShare || bin.goods < limits.smallestGoods || bin.bads < limits.smallestBads;
+function isCoarse(kind: string): boolean {
+  return kind === 'cut' || kind === 'group';
+}
+
+function tooSmall(bin: BinFigures, limits: SizeLimits, known: number): boolean {
+  return (
+    bin.rows < limits.smallestShare * known * (1 - 1e-12) || bin.goods < limits.smallestGoods || bin.bads < limits.smallestBads
+  );
 }
 
 /** Usual reading of IV: under 0.02 none, to 0.1 weak, to 0.3 medium, above strong. N. Siddiqi, Credit Risk Scorecards, Wiley 2006, from memory. */
