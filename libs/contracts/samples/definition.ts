@@ -115,28 +115,43 @@ export const PartitionCounts = z.object({
   goods: z.int(),
   bads: z.int(),
   indeterminates: z.int(),
+  /** Sum of the weights of goods and bads. */
   weight: z.number(),
   /** bads / (goods + bads), null without either. */
   badRate: z.number().nullable(),
 });
 export type PartitionCounts = z.infer<typeof PartitionCounts>;
 
-/** One step of the waterfall: what went out, and what is left after it. `left` of one step minus `out` of the next is its `left`. */
+/** Out-of-time: only its rows are told until it is opened, so that nobody looks at its outcome by the way. */
+export const CoveredCounts = z.object({
+  covered: z.boolean(),
+  rows: z.int(),
+  goods: z.int().nullable(),
+  bads: z.int().nullable(),
+  indeterminates: z.int().nullable(),
+  weight: z.number().nullable(),
+  badRate: z.number().nullable(),
+});
+export type CoveredCounts = z.infer<typeof CoveredCounts>;
+
+/**
+ * One step of the waterfall from the file down to development: what went out, and what is left after it. `left` of the step before minus
+ * `out` is `left`, exactly.
+ */
 export const WaterfallStep = z.object({
-  kind: z.enum(['source', 'exclusion', 'declined', 'outcome', 'unassigned', 'modelled']),
+  kind: z.enum(['source', 'exclusion', 'outcome', 'declined', 'out-of-time', 'hold-out', 'development']),
   label: z.string(),
   out: z.int(),
-  /** Bads among those that went out, and their share of goods and bads; null where none has an outcome. */
-  outBads: z.int(),
-  outBadRate: z.number().nullable(),
+  /** Goods and bads among those that went out; null where they have no outcome or it is covered. */
+  outGoods: z.int().nullable(),
+  outBads: z.int().nullable(),
   left: z.int(),
-  leftBadRate: z.number().nullable(),
 });
 export type WaterfallStep = z.infer<typeof WaterfallStep>;
 
 export const DefinitionCounts = z.object({
   waterfall: z.array(WaterfallStep),
-  partitions: z.object({ development: PartitionCounts, holdOut: PartitionCounts, outOfTime: PartitionCounts }),
+  partitions: z.object({ development: PartitionCounts, holdOut: PartitionCounts, outOfTime: CoveredCounts }),
   declined: z.int(),
 });
 export type DefinitionCounts = z.infer<typeof DefinitionCounts>;

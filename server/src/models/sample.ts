@@ -1,5 +1,6 @@
 import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import type { DefinitionCounts, DraftContent, SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
+import type { ResultCounts } from '@tallystone/contracts/result/types';
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
 import { type CreationOptional, DataTypes, type InferAttributes, type InferCreationAttributes, Model, type Sequelize } from 'sequelize';
 
@@ -44,13 +45,18 @@ export class SampleDraft extends Model<InferAttributes<SampleDraft>, InferCreati
   declare savedBy: string;
 }
 
+/** What is shown of a definition's counts, and the counts as a result states them. */
+export interface StoredCounts extends DefinitionCounts {
+  readonly result: ResultCounts;
+}
+
 export class SampleDefinition extends Model<InferAttributes<SampleDefinition>, InferCreationAttributes<SampleDefinition>> {
   declare id: CreationOptional<string>;
   declare sampleId: string;
   declare modelId: string;
   declare number: number;
   declare content: SampleDefinitionContent;
-  declare counts: DefinitionCounts;
+  declare counts: StoredCounts;
   declare sha256: string;
   declare createdAt: CreationOptional<Date>;
   declare createdBy: string;

@@ -18,7 +18,8 @@ describe('a segment of a column', () => {
   it('brings every text back to the letter', () => {
     fc.assert(
       fc.property(fc.array(fc.oneof(fc.string({ unit: 'binary' }), fc.integer().map(String), fc.double().map(String)), { maxLength: 300 }), (values) => {
-        const kept = values.map((text) => text.toWellFormed?.() ?? text);
+        // A file in any encoding holds whole characters only, never half a surrogate pair.
+        const kept = values.map((text) => Buffer.from(text, 'utf8').toString('utf8'));
         expect(roundTrip(kept)).toEqual(kept);
       }),
       { numRuns: 500 },

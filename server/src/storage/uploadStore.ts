@@ -19,8 +19,8 @@ export interface UploadStoreOptions {
   readonly sequelize: Sequelize;
   /** AES-256 key of the raw files. */
   readonly key: Buffer;
-  /** Throws when a file that begins like this is not read here; what had arrived of it is then dropped. */
-  readonly inspect: (head: Buffer, fileName: string) => void;
+  /** Throws when a file that begins (`whole`: consists) of these bytes is not read here; what had arrived of it is then dropped. */
+  readonly inspect: (head: Buffer, whole: boolean) => void;
   /** Makes the sample, in the transaction that stores the last chunk: the file is here as a whole, or it is still an upload. */
   readonly complete: (tx: Transaction, file: ArrivedFile) => Promise<void>;
 }
@@ -90,7 +90,7 @@ export class UploadStore extends DataStore {
       const bytes = Buffer.concat(pieces, waiting);
       pieces = [];
       waiting = 0;
-      if (at === 0) await this.inspect(id, bytes, file.fileName);
+      if (at === 0) await this.inspect(id, bytes, bytes.length === file.size);
       await this.storeNext(id, file, { sequence, start: at, bytes, hash: fingerprint.hash });
       fingerprint.hash.update(bytes);
       sequence++;
@@ -119,9 +119,9 @@ export class UploadStore extends DataStore {
     return at;
   }
 
-  private async inspect(id: string, head: Buffer, fileName: string): Promise<void> {
+  private async inspect(id: string, head: Buffer, whole: boolean): Promise<void> {
     try {
-      this.options.inspect(head, fileName);
+      this.options.inspect(head, whole);
     } catch (cause) {
       await this.remove(id);
       throw cause;

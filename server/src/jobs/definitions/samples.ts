@@ -1,0 +1,20 @@
+import { ConfirmationResult } from '@tallystone/contracts/samples/definition';
+import { ReadingChoices, ReadingResult } from '@tallystone/contracts/samples/reading';
+import { z } from 'zod';
+import { defineJob } from './job';
+
+/** Reads a raw file under confirmed choices: types, profile, columns. */
+export const readSampleJob = defineJob({
+  kind: 'sample.read',
+  queue: 'long',
+  payload: z.strictObject({ sampleId: z.uuid(), choices: ReadingChoices }),
+  result: ReadingResult,
+});
+
+/** Carries out a draft on all rows and keeps it as an immutable definition. */
+export const confirmSampleJob = defineJob({
+  kind: 'sample.confirm',
+  queue: 'long',
+  payload: z.strictObject({ sampleId: z.uuid(), revision: z.int() }),
+  result: ConfirmationResult,
+});

@@ -1,0 +1,6 @@
+import type { Route } from '../http/route';
+import { definitionRoutes } from './definitions';
+import { fileRoutes } from './files';
+import { uploadRoutes } from './uploads';
+
+export const sampleRoutes = (): Route[] => [...uploadRoutes(), ...fileRoutes(), ...definitionRoutes()];

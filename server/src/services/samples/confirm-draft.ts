@@ -1,0 +1,99 @@
+import { createHash, randomUUID } from 'node:crypto';
+import canonicalize from 'canonicalize';
+import type { Transaction } from 'sequelize';
+import type { Context } from '../../context';
+import { rows } from '../../database/sql';
+import { confirmSampleJob } from '../../jobs/definitions/samples';
+import { startRun } from '../../jobs/start-run';
+import type { Actor } from '../../models/person';
+import type { Run } from '../../models/run';
+import { Sample, SampleDefinition } from '../../models/sample';
+import { Problem, conflict, invalid } from '../../problems/problem';
+import { storeAssignment } from '../../storage/assignmentStore';
+import { actorOf } from '../people/actor-of';
+import { appendRecord } from '../record/append';
+import { carryOut } from './carry-out';
+import { type FoundDraft, findDraft, presentDraft } from './draft';
+import { findSample } from './find-sample';
+
+/**
+ * Starts the run that confirms the draft as it was last read.
+ *
+ * @throws Problem 412 when the draft was saved since, 422 with everything that can be seen to stand in the way, 409 while something runs
+ */
+export async function confirmDraft(context: Context, tx: Transaction, person: Actor, draft: FoundDraft, revision: number, requestId: string): Promise<Run> {
+  const { sample } = draft;
+  if (draft.revision !== revision) throw new Problem(412, 'stale', 'The draft was saved since you read it. Look at it as it is now, then confirm.');
+  const { problems } = await presentDraft(context, draft, tx);
+  if (problems.length > 0) throw invalid(problems);
+  if (sample.busy) throw conflict('busy', 'Something runs on this sample already. Wait for it or cancel it.');
+  return startRun(context, tx, confirmSampleJob, {
+    payload: { sampleId: sample.id, revision },
+    person,
+    modelId: sample.modelId,
+    entity: 'sample',
+    entityId: sample.id,
+    singleton: sample.id,
+    requestId,
+  });
+}
+
+/** What confirming needs of the run that does it. */
+export interface ConfirmingRun {
+  readonly context: Context;
+  readonly run: { readonly personId: string };
+  readonly signal: AbortSignal;
+  progress(phase: string, share: number | null): void;
+  finish(work: (tx: Transaction) => Promise<{ definitionId: string; number: number }>): Promise<void>;
+}
+
+/** Carries out the draft on every row and keeps it, with its counts and who is in which partition, as an immutable definition. */
+export async function confirmDefinition(payload: { sampleId: string; revision: number }, run: ConfirmingRun): Promise<void> {
+  const { context } = run;
+  const row = await Sample.findByPk(payload.sampleId, { rejectOnEmpty: true });
+  const sample = await findSample(context.sequelize, row.modelId, row.id);
+  const draft = await findDraft(context, sample);
+  if (!sample || !draft || draft.revision !== payload.revision) {
+    throw new Problem(412, 'stale', 'The draft was saved since it was to be confirmed. Look at it as it is now, then confirm.');
+  }
+  run.progress('counting', 0.1);
+  const { problems, content, answer } = await carryOut(context, sample, draft.content, run.signal);
+  if (problems) {
+    const detail = problems.length === 1 ? problems[0].message : `${problems.length} things stand in the way; the first: ${problems[0].message}`;
+    throw new Problem(422, 'not-confirmed', detail, { problems });
+  }
+  run.progress('storing', 0.8);
+  const id = randomUUID();
+  await run.finish(async (tx) => {
+    await rows(context.sequelize, 'SELECT id FROM samples WHERE id = $1 FOR UPDATE', [sample.id], tx);
+    const [{ number }] = await rows<{ number: number }>(
+      context.sequelize,
+      'SELECT coalesce(max(number), 0)::int + 1 AS number FROM sample_definitions WHERE sample_id = $1',
+      [sample.id],
+      tx,
+    );
+    const sha256 = createHash('sha256').update(canonicalize(content) ?? '').digest('hex');
+    const { counts, result, prepared } = answer;
+    await SampleDefinition.create(
+      { id, sampleId: sample.id, modelId: sample.modelId, number, content, counts: { ...counts, result }, sha256, createdBy: run.run.personId },
+      { transaction: tx },
+    );
+    await storeAssignment(context.sequelize, tx, id, prepared);
+    await appendRecord(tx, {
+      actor: await actorOf(run.run.personId, tx),
+      action: 'sample.defined',
+      entity: 'sample',
+      entityId: sample.id,
+      modelId: sample.modelId,
+      after: {
+        definitionId: id,
+        number,
+        sha256,
+        development: result.development.rows,
+        holdOut: result.holdOut.rows,
+        outOfTime: result.outOfTime.rows,
+      },
+    });
+    return { definitionId: id, number };
+  });
+}

@@ -1,0 +1,68 @@
+import type { ColumnProfile, ColumnRole } from '@tallystone/contracts/samples/columns';
+import { singleRoles } from '@tallystone/contracts/samples/columns';
+import type { DefinedColumn, DraftContent } from '@tallystone/contracts/samples/definition';
+import type { Transaction } from 'sequelize';
+import type { Context } from '../../context';
+import { rows } from '../../database/sql';
+import { proposeOutcome } from './profile/guess-outcome';
+
+/** The draft that a person finds after reading: every suggestion filled in, nothing confirmed. */
+export function firstDraft(profiles: readonly ColumnProfile[]): DraftContent {
+  const taken = new Set<ColumnRole>();
+  const columns = profiles.map((profile): DefinedColumn => {
+    let role = profile.suggestedRole;
+    if (singleRoles.includes(role)) {
+      if (taken.has(role)) role = 'not used';
+      taken.add(role);
+    }
+    const used = role === 'characteristic' && !profile.suggestedProtected;
+    return {
+      column: profile.column,
+      kind: profile.kind,
+      // A protected attribute is kept for checks on fairness; as a characteristic it has to be chosen.
+      role: role === 'characteristic' && !used ? 'not used' : role,
+      protected: profile.suggestedProtected,
+      citation: null,
+      special: [],
+      reason: role === 'not used' ? profile.suggestion : role === 'characteristic' && !used ? 'Protected: kept for fairness checks, not for the fit.' : null,
+    };
+  });
+  const outcome = profiles.find(({ column }) => columns.some((one) => one.column === column && one.role === 'outcome'));
+  const decision = profiles.find(({ column }) => columns.some((one) => one.column === column && one.role === 'decision'));
+  const partition = profiles.find(({ column }) => columns.some((one) => one.column === column && one.role === 'partition'));
+  const declined = decision?.mostFrequent.map(({ value }) => value).filter((value) => /^(declined?|rejected?|refused|no|0)$/i.test(value)) ?? [];
+  return {
+    columns,
+    outcome: outcome ? proposeOutcome(outcome) : { good: [], bad: [], indeterminate: [], excluded: [] },
+    declined: declined.length > 0 ? { values: declined } : null,
+    exclusions: [],
+    partition: partition ? byColumn(partition) : { by: 'seed', seed: 1, holdOutShare: 0.3, outOfTime: null },
+  };
+}
+
+function byColumn(profile: ColumnProfile): DraftContent['partition'] {
+  const matching = (pattern: RegExp): string[] => profile.mostFrequent.map(({ value }) => value).filter((value) => pattern.test(value));
+  return {
+    by: 'column',
+    development: matching(/^(dev|development|train|training)/i),
+    holdOut: matching(/^(hold|test|valid)/i),
+    outOfTime: matching(/^(oot|out)/i),
+  };
+}
+
+export async function writeFirstDraft(
+  context: Context,
+  tx: Transaction,
+  sampleId: string,
+  profiles: readonly ColumnProfile[],
+  personId: string,
+): Promise<void> {
+  await rows(
+    context.sequelize,
+    `INSERT INTO sample_drafts (sample_id, content, saved_by) VALUES ($1, $2::jsonb, $3)
+     ON CONFLICT (sample_id) DO UPDATE SET content = excluded.content, revision = sample_drafts.revision + 1, saved_at = now(), saved_by = excluded.saved_by
+     RETURNING sample_id`,
+    [sampleId, JSON.stringify(firstDraft(profiles)), personId],
+    tx,
+  );
+}

@@ -1,0 +1,164 @@
+import type { ProblemItem } from '@tallystone/contracts/problems/schema';
+import type { Preview, PreviewRequest, ReadingChoices } from '@tallystone/contracts/samples/reading';
+import { type CsvError, parse } from 'csv-parse/sync';
+import type { Context } from '../../context';
+import { judgeFormat, numberReader, readSegments, sniff } from '../../reading/index';
+import { readChunks } from '../../storage/rawFiles';
+import type { FoundSample } from './find-sample';
+import { problemItem } from './problem-item';
+import { type Counted, judgeKind, thin } from './profile/kind';
+
+/** How much of a file is looked at before a person decides: its first chunk, and of that at most this many bytes. */
+const lookedBytes = 2 * 1024 * 1024;
+const shownRows = 20;
+/** Rows from which the kinds of columns are judged. */
+const judgedRows = 2000;
+
+/** Texts that often mean "missing", proposed when they stand in the file. */
+const missingTokens = ['NA', 'N/A', 'n/a', '#N/A', 'NULL', 'null', 'NaN', 'nan', '.', '?', '-'];
+
+const signNames: Record<string, string> = { ',': 'comma', ';': 'semicolon', '\t': 'tab', '|': 'vertical bar', '.': 'point', ' ': 'blank', '\u00a0': 'no-break blank', '\u202f': 'narrow blank', "'": 'apostrophe' };
+
+/**
+ * The first rows as they would be read, with every doubt about the part that was looked at. What is not chosen is judged from the file and
+ * the reason is told; nothing is decided.
+ */
+export async function previewReading(context: Context, sample: FoundSample, chosen: PreviewRequest): Promise<Preview> {
+  let bytes = Buffer.alloc(0);
+  for await (const chunk of readChunks(context.sequelize, context.config.keys.rawFiles.subarray(0, 32), sample.rawFileId)) {
+    bytes = Buffer.concat([bytes, chunk]);
+    if (bytes.length >= lookedBytes) break;
+  }
+  const whole = sample.size <= lookedBytes;
+  return previewOf(whole ? bytes : bytes.subarray(0, lookedBytes), whole, chosen);
+}
+
+/** @param whole the bytes are the whole file */
+export async function previewOf(bytes: Buffer, whole: boolean, chosen: PreviewRequest): Promise<Preview> {
+  const guessed = sniff(bytes.subarray(0, 65_536));
+  const partial: Omit<ReadingChoices, 'missing'> = {
+    delimiter: chosen.delimiter ?? (guessed.delimiter as ReadingChoices['delimiter']),
+    encoding: chosen.encoding ?? guessed.encoding,
+    decimal: chosen.decimal ?? guessed.decimal,
+    thousands: chosen.thousands === undefined ? (guessed.thousands as ReadingChoices['thousands']) : chosen.thousands,
+    trim: chosen.trim ?? true,
+  };
+  const table = looseTable(textOf(bytes, partial.encoding), partial);
+  const missing = chosen.missing ?? proposeMissing(table.rows);
+  const choices: ReadingChoices = { ...partial, missing };
+  const { problems, records } = await problemsOf(bytes, whole, choices);
+  const columns = table.header.map((column, position) => judgeColumn(column, position, table.rows, choices));
+  return {
+    choices,
+    reasons: reasonsFor(chosen, choices, guessed.encodingStated, table),
+    header: table.header,
+    rows: table.rows.slice(0, shownRows),
+    columns: columns.map(({ column, kind, against }) => ({ column, kind, against })),
+    looked: { records, bytes: bytes.length, whole },
+    problems,
+    warnings: columns.flatMap(({ warning }) => (warning ? [warning] : [])),
+  };
+}
+
+interface Table {
+  header: string[];
+  rows: { record: number; line: number; cells: string[] }[];
+}
+
+/** By csv-parse, which reads on where a file is not well formed: what is shown while something is still wrong with it. */
+function looseTable(text: string, choices: Omit<ReadingChoices, 'missing'>): Table {
+  let lines = 0;
+  const read: { line: number; cells: string[] }[] = [];
+  try {
+    const records = parse(text, {
+      delimiter: choices.delimiter,
+      trim: choices.trim,
+      bom: true,
+      relax_column_count: true,
+      relax_quotes: true,
+      skip_empty_lines: true,
+      skip_records_with_error: true,
+      info: true,
+      to: judgedRows + 1,
+    }) as unknown as { info: { lines: number }; record: string[] }[];
+    for (const { info, record } of records) {
+      read.push({ line: lines + 1, cells: record });
+      lines = info.lines;
+    }
+  } catch (error) {
+    // An unclosed quote swallows the rest: what came before it is shown, the problem itself comes from the reader.
+    if (!isCsvError(error)) throw error;
+  }
+  const [header, ...rows] = read;
+  return { header: header?.cells ?? [], rows: rows.map(({ line, cells }, place) => ({ record: place + 1, line, cells })) };
+}
+
+const isCsvError = (error: unknown): error is CsvError => error instanceof Error && 'code' in error && String(error.code).startsWith('CSV_');
+
+/** For showing only: what is read is decoded strictly by the reader. */
+function textOf(bytes: Buffer, encoding: ReadingChoices['encoding']): string {
+  const name = encoding === 'windows-1252' ? 'windows-1252' : encoding === 'utf-16be' ? 'utf-16be' : encoding;
+  return new TextDecoder(name).decode(bytes.subarray(0, 1024 * 1024));
+}
+
+async function problemsOf(bytes: Buffer, whole: boolean, choices: ReadingChoices): Promise<{ problems: ProblemItem[]; records: number }> {
+  // Part of a file is cut after its last complete line, so that the cut itself is no problem.
+  const unit = choices.encoding.startsWith('utf-16') ? Buffer.from('\n', 'utf16le') : Buffer.from('\n');
+  if (choices.encoding === 'utf-16be') unit.swap16();
+  const end = whole ? bytes.length : bytes.lastIndexOf(unit) + unit.length;
+  async function* once(): AsyncGenerator<Buffer> {
+    yield bytes.subarray(0, end);
+  }
+  const file = readSegments(once(), choices);
+  for await (const segment of file.segments) void segment;
+  const facts = file.facts();
+  // A quoted line break at the cut looks like a quote that is never closed.
+  const problems = facts.problems.filter(({ code }) => whole || code !== 'unclosed-quote');
+  return { problems: problems.map(problemItem), records: facts.rows };
+}
+
+function proposeMissing(rows: Table['rows']): string[] {
+  const found = new Set<string>();
+  for (const { cells } of rows) for (const cell of cells) if (missingTokens.includes(cell)) found.add(cell);
+  return ['', ...missingTokens.filter((token) => found.has(token))];
+}
+
+function judgeColumn(column: string, position: number, rows: Table['rows'], choices: ReadingChoices) {
+  const counts = new Map<string, number>();
+  for (const { cells } of rows) {
+    const cell = cells[position];
+    if (cell !== undefined && !choices.missing.includes(cell)) counts.set(cell, (counts.get(cell) ?? 0) + 1);
+  }
+  const values: Counted[] = [...counts].map(([text, count]) => ({ text, count }));
+  const { kind, against } = judgeKind(values, numberReader(choices));
+  const texts = values.map(({ text }) => text);
+  const judged = judgeFormat(texts);
+  let warning: ProblemItem | null = null;
+  if (against !== null) warning = { code: 'doubtful-column', message: `${column}: ${against}`, where: { column, position: position + 1 } };
+  else if (kind === 'numeric' && judged.ambiguous && texts.some((text) => /[.,]/.test(text))) {
+    const example = texts.find((text) => /[.,]/.test(text)) ?? '';
+    const as = numberReader(choices).read(example);
+    warning = { code: 'ambiguous-numbers', message: `${column}: “${example}” is read as ${as}. Confirm the decimal and thousands signs.`, where: { column, position: position + 1 } };
+  }
+  return { column, kind, against, warning };
+}
+
+function reasonsFor(chosen: PreviewRequest, choices: ReadingChoices, encodingStated: boolean, table: Table): Preview['reasons'] {
+  const width = table.header.length;
+  const alike = table.rows.filter(({ cells }) => cells.length === width).length;
+  const all: Preview['reasons'] = [
+    { choice: 'delimiter', reason: `With the ${signNames[choices.delimiter]}, ${thin(alike)} of the first ${thin(table.rows.length)} rows have the header’s ${width} fields.` },
+    {
+      choice: 'encoding',
+      reason: encodingStated ? 'The file says so itself, by a byte-order mark.' : choices.encoding === 'utf-8' ? 'Its first bytes are UTF-8.' : choices.encoding === 'windows-1252' ? 'Its first bytes are not UTF-8; Windows-1252 is what such files mostly are.' : 'Its first bytes are those of UTF-16.',
+    },
+    { choice: 'decimal', reason: choices.decimal === ',' ? 'Most columns of numbers with decimals use the comma.' : 'No column of numbers needs a decimal comma.' },
+    { choice: 'thousands', reason: choices.thousands === null ? 'No column needs a thousands sign.' : `Numbers are written with the ${signNames[choices.thousands]} between thousands.` },
+    { choice: 'trim', reason: 'Blanks around a field that is not quoted carry no meaning.' },
+    {
+      choice: 'missing',
+      reason: choices.missing.length > 1 ? `Beside the empty field, ${choices.missing.filter((token) => token !== '').join(', ')} stand in the rows looked at.` : 'Only empty fields; no other usual token stands in the rows looked at.',
+    },
+  ];
+  return all.filter(({ choice }) => chosen[choice] === undefined);
+}

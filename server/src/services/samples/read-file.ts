@@ -1,0 +1,193 @@
+import { randomUUID } from 'node:crypto';
+import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
+import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
+import { fileLimits } from '@tallystone/contracts/samples/schema';
+import type { Transaction } from 'sequelize';
+import { deriveKey } from '../../config/keys';
+import type { Context } from '../../context';
+import { rows } from '../../database/sql';
+import { Sample } from '../../models/sample';
+import { Problem } from '../../problems/problem';
+import { type ColumnSegment, type ReadingProblem, numberReader, readSegments } from '../../reading/index';
+import { readStoredColumn, segmentRows, storeSegment } from '../../storage/columnStore';
+import { readRawFile } from '../../storage/rawFiles';
+import { actorOf } from '../people/actor-of';
+import { appendRecord } from '../record/append';
+import { writeFirstDraft } from './first-draft';
+import { problemItem } from './problem-item';
+import { DuplicateRows } from './profile/duplicates';
+import { guessOutcome } from './profile/guess-outcome';
+import { suspectLeakage } from './profile/leakage';
+import { type Personal, hashText, personalColumn } from './profile/personal';
+import { profileColumn } from './profile/profile-column';
+
+/** What reading needs of the run that does it; tests and the demo give their own. */
+export interface ReadingRun {
+  readonly context: Context;
+  readonly run: { readonly id: string; readonly personId: string };
+  readonly attempt: number;
+  readonly signal: AbortSignal;
+  progress(phase: string, share: number | null): void;
+  write<T>(work: (tx: Transaction) => Promise<T>): Promise<T>;
+  finish(work: (tx: Transaction) => Promise<{ rows: number; columns: number; flags: number }>): Promise<void>;
+}
+
+/** Share of the whole that each phase takes, as measured on mixed files. */
+const readingShare = 0.7;
+
+/**
+ * Reads a raw file once, segment by segment, and keeps it by column: texts coded, what identifies people as keyed hashes, a profile per
+ * column. Memory holds one segment and one column. Nothing of it counts before the end, where one transaction points the sample at it.
+ *
+ * @throws Problem 422 `file-refused` when the file has problems; all of them are then with the sample
+ */
+export async function readFile(sampleId: string, choices: ReadingChoices, run: ReadingRun): Promise<void> {
+  const { context, signal } = run;
+  const { sequelize } = context;
+  const sample = await Sample.findByPk(sampleId, { rejectOnEmpty: true });
+  const size = Number(sample.size);
+  const readingId = randomUUID();
+  await run.write(async (tx) => {
+    await dropReadings(context, tx, sampleId, null);
+    await rows(
+      sequelize,
+      'INSERT INTO sample_readings (id, sample_id, run_id, attempt) VALUES ($1, $2, $3, $4) RETURNING id',
+      [readingId, sampleId, run.run.id, run.attempt],
+      tx,
+    );
+  });
+
+  run.progress('reading', 0);
+  const file = readSegments(readRawFile(sequelize, context.config.keys.rawFiles.subarray(0, 32), sampleId, signal), choices, {
+    mostRows: fileLimits.rows,
+    mostColumns: fileLimits.columns,
+    mostCharacters: fileLimits.cellBytes,
+    segmentRows,
+    signal,
+    onProgress: ({ bytes }) => run.progress('reading', (readingShare * bytes) / size),
+  });
+  const key = deriveKey(context.config.keys.identifiers, 'sample columns');
+  const isMissing = missingIn(choices);
+  const duplicates = new DuplicateRows();
+  let personal: (Personal | null)[] = [];
+  let segment = 0;
+  for await (const part of file.segments) {
+    signal.throwIfAborted();
+    if (segment === 0) personal = part.columns.map((column, position) => judgePersonal(file.facts().header[position], column, isMissing));
+    duplicates.add(part.columns, part.rows);
+    const columns = part.columns.map((values, position) => ({
+      position,
+      values: personal[position] ? { codes: values.codes, texts: values.texts.map((text) => (isMissing(text) ? text : hashText(key, text))) } : values,
+    }));
+    await run.write((tx) => storeSegment(sequelize, readingId, segment, columns, tx));
+    segment++;
+  }
+  const facts = file.facts();
+  if (facts.problems.length > 0) await refuseFile(run, sampleId, choices, facts.problems);
+  if (facts.sha256 !== sample.sha256) throw new Error(`The stored file of sample ${sampleId} has another fingerprint than the one that arrived`);
+
+  const profiles = await profileAll(run, readingId, facts.header, facts.rows, choices, personal);
+  run.progress('storing', 0.98);
+  await run.finish(async (tx) => {
+    await storeProfiles(context, tx, readingId, profiles);
+    await Sample.update(
+      { reading: choices, readingId, rows: facts.rows, columns: facts.header.length, duplicateRows: duplicates.count(), problems: [] },
+      { where: { id: sampleId }, transaction: tx },
+    );
+    await dropReadings(context, tx, sampleId, readingId);
+    await writeFirstDraft(context, tx, sampleId, profiles, run.run.personId);
+    await appendRecord(tx, {
+      actor: await actorOf(run.run.personId, tx),
+      action: 'sample.read',
+      entity: 'sample',
+      entityId: sampleId,
+      modelId: sample.modelId,
+      after: { rows: facts.rows, columns: facts.header.length, reading: choices, sha256: sample.sha256 },
+    });
+    return { rows: facts.rows, columns: facts.header.length, flags: profiles.reduce((sum, { flags }) => sum + flags.length, 0) };
+  });
+}
+
+/** What a run without a result leaves behind: nothing. The sample keeps the reading that it had. */
+export async function abandonReading(tx: Transaction, runId: string): Promise<void> {
+  const sequelize = Sample.sequelize!;
+  await rows(
+    sequelize,
+    `DELETE FROM sample_readings r USING samples s WHERE r.run_id = $1 AND s.id = r.sample_id AND s.reading_id IS DISTINCT FROM r.id RETURNING r.id`,
+    [runId],
+    tx,
+  );
+}
+
+const missingIn = (choices: ReadingChoices): ((text: string) => boolean) => {
+  const tokens = new Set(choices.missing);
+  return (text) => text === '' || tokens.has(text);
+};
+
+/** Readings that the sample does not point at: those of attempts that were lost or cancelled, and the one before. */
+async function dropReadings(context: Context, tx: Transaction, sampleId: string, keep: string | null): Promise<void> {
+  await rows(
+    context.sequelize,
+    `DELETE FROM sample_readings r USING samples s
+      WHERE r.sample_id = $1 AND s.id = $1 AND r.id IS DISTINCT FROM s.reading_id AND r.id IS DISTINCT FROM $2::uuid RETURNING r.id`,
+    [sampleId, keep],
+    tx,
+  );
+}
+
+function judgePersonal(name: string, { codes, texts }: ColumnSegment, isMissing: (text: string) => boolean): Personal | null {
+  const counts = new Uint32Array(texts.length);
+  for (const code of codes) counts[code]++;
+  return personalColumn(name, texts, counts, isMissing);
+}
+
+async function refuseFile(run: ReadingRun, sampleId: string, choices: ReadingChoices, problems: readonly ReadingProblem[]): Promise<never> {
+  const items = problems.map(problemItem);
+  await run.write(async (tx) => {
+    await Sample.update({ problems: items, reading: choices }, { where: { id: sampleId, readingId: null }, transaction: tx });
+    await Sample.update({ problems: items }, { where: { id: sampleId }, transaction: tx });
+  });
+  const detail = items.length === 1 ? items[0].message : `The file has ${items.length} problems; the first: ${items[0].message}`;
+  throw new Problem(422, 'file-refused', `${detail} Mend the file and upload it again, or change the reading choices.`, { problems: items });
+}
+
+async function profileAll(
+  run: ReadingRun,
+  readingId: string,
+  header: readonly string[],
+  count: number,
+  choices: ReadingChoices,
+  personal: readonly (Personal | null)[],
+): Promise<ColumnProfile[]> {
+  const { sequelize } = run.context;
+  const profiles: ColumnProfile[] = [];
+  for (let position = 0; position < header.length; position++) {
+    run.signal.throwIfAborted();
+    run.progress('profiling', readingShare + (0.25 * position) / header.length);
+    const column = await readStoredColumn(sequelize, readingId, position, count);
+    profiles.push(profileColumn(header[position], position, column, choices, personal[position] ?? null));
+  }
+  const outcome = await guessOutcome(profiles, (position) => readStoredColumn(sequelize, readingId, position, count));
+  if (!outcome) return profiles;
+  const isMissing = missingIn(choices);
+  const reader = numberReader(choices);
+  for (const profile of profiles) {
+    if (profile.suggestedRole !== 'characteristic') continue;
+    run.signal.throwIfAborted();
+    const column = await readStoredColumn(sequelize, readingId, profile.position, count);
+    const flag = suspectLeakage(column, isMissing, outcome, profile.kind === 'numeric' ? reader : null);
+    if (flag) profile.flags.push(flag);
+  }
+  return profiles;
+}
+
+async function storeProfiles(context: Context, tx: Transaction, readingId: string, profiles: readonly ColumnProfile[]): Promise<void> {
+  for (const profile of profiles) {
+    await rows(
+      context.sequelize,
+      'INSERT INTO sample_columns (reading_id, position, name, kind, hashed, profile) VALUES ($1, $2, $3, $4, $5, $6::jsonb) RETURNING position',
+      [readingId, profile.position, profile.column, profile.kind, profile.hashed, JSON.stringify(profile)],
+      tx,
+    );
+  }
+}

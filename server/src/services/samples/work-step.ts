@@ -1,0 +1,22 @@
+import type { Sequelize } from 'sequelize';
+import { rows } from '../../database/sql';
+import type { StepReport } from '../models/work';
+
+/** The sample's notch: done once a definition is confirmed, a decision while a file waits for its reading or its definition. */
+export async function sampleWorkStep(sequelize: Sequelize, modelId: string): Promise<StepReport | null> {
+  const [counts] = await rows<{ samples: number; read: number; definitions: number; development: number | null }>(
+    sequelize,
+    `SELECT (SELECT count(*)::int FROM samples WHERE model_id = $1) AS samples,
+            (SELECT count(*)::int FROM samples WHERE model_id = $1 AND reading_id IS NOT NULL) AS read,
+            (SELECT count(*)::int FROM sample_definitions WHERE model_id = $1) AS definitions,
+            (SELECT (counts #>> '{partitions,development,rows}')::int FROM sample_definitions WHERE model_id = $1 ORDER BY created_at DESC, number DESC LIMIT 1)
+              AS development`,
+    [modelId],
+  );
+  if (counts.samples === 0) return null;
+  if (counts.definitions > 0) return { state: 'done', caption: `${thin(counts.development ?? 0)} in development` };
+  if (counts.read > 0) return { state: 'decision', caption: 'Define outcome and partition' };
+  return { state: 'decision', caption: 'Confirm how the file is read' };
+}
+
+const thin = (value: number): string => String(value).replace(/\B(?=(\d{3})+(?!\d))/g, '\u2009');

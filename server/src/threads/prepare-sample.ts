@@ -1,0 +1,83 @@
+import type { DefinitionCounts, SampleDefinitionContent, WaterfallStep } from '@tallystone/contracts/samples/definition';
+import type { ResultCounts } from '@tallystone/contracts/result/types';
+import { prepare } from '../replay/prepare';
+import { ReplayError, type ReplayProblem } from '../replay/problems';
+import type { SourceColumn } from '../replay/source';
+import { HOLD_OUT, OUT_OF_TIME, type Prepared } from '../replay/types';
+import type { Task } from './task';
+
+export interface PreparePayload {
+  readonly content: SampleDefinitionContent;
+  readonly rows: number;
+  readonly columns: ReadonlyMap<string, SourceColumn>;
+}
+
+export type PrepareAnswer =
+  | { readonly problems: readonly ReplayProblem[] }
+  | {
+      readonly problems: null;
+      readonly prepared: Pick<Prepared, 'partition' | 'outcome' | 'exclusion' | 'weights'>;
+      readonly result: ResultCounts;
+      /** With the outcome of out-of-time; covering it is for whoever shows it. */
+      readonly counts: DefinitionCounts;
+    };
+
+/** Carries out a definition on its rows, off the event loop: every problem of the rows, or who is in which partition with the waterfall. */
+export const prepareSample: Task<PreparePayload, PrepareAnswer> = ({ content, rows, columns }) => {
+  try {
+    const prepared = prepare(content, { rows, column: (name) => columns.get(name) });
+    const { partition, outcome, exclusion, weights, counts } = prepared;
+    return { problems: null, prepared: { partition, outcome, exclusion, weights }, result: counts, counts: describe(content, prepared, columns) };
+  } catch (error) {
+    if (error instanceof ReplayError) return { problems: error.problems };
+    throw error;
+  }
+};
+
+const badRate = (goods: number, bads: number): number | null => (goods + bads === 0 ? null : bads / (goods + bads));
+
+function describe(content: SampleDefinitionContent, prepared: Prepared, columns: ReadonlyMap<string, SourceColumn>): DefinitionCounts {
+  const { counts } = prepared;
+  const saysGood = goodTest(content, columns);
+  const goodsOut = counts.excluded.map(() => 0);
+  prepared.exclusion.forEach((rule, row) => {
+    if (rule > 0 && saysGood(row)) goodsOut[rule - 1]++;
+  });
+
+  const waterfall: WaterfallStep[] = [{ kind: 'source', label: 'Rows of the file', out: 0, outGoods: null, outBads: null, left: prepared.rows }];
+  let left = prepared.rows;
+  const step = (kind: WaterfallStep['kind'], label: string, out: number, outGoods: number | null, outBads: number | null): void => {
+    left -= out;
+    waterfall.push({ kind, label, out, outGoods, outBads, left });
+  };
+  counts.excluded.forEach(({ reason, rows, bads }, place) => {
+    const byOutcome = place >= content.exclusions.length;
+    step(byOutcome ? 'outcome' : 'exclusion', byOutcome ? 'Excluded by outcome' : reason, rows, byOutcome ? null : goodsOut[place], byOutcome ? null : bads);
+  });
+  if (content.declined) step('declined', 'Declined: outcome not known', counts.declined, null, null);
+  const known = (code: number) => (code === OUT_OF_TIME ? counts.outOfTime : counts.holdOut);
+  step('out-of-time', 'Out-of-time', known(OUT_OF_TIME).rows, known(OUT_OF_TIME).goods, known(OUT_OF_TIME).bads);
+  step('hold-out', 'Hold-out', known(HOLD_OUT).rows, known(HOLD_OUT).goods, known(HOLD_OUT).bads);
+  waterfall.push({ kind: 'development', label: 'Development', out: 0, outGoods: null, outBads: null, left });
+  if (left !== counts.development.rows) throw new Error(`The waterfall leaves ${left} rows and development has ${counts.development.rows}`);
+
+  const told = (part: ResultCounts['development']) => ({ ...part, badRate: badRate(part.goods, part.bads) });
+  return {
+    waterfall,
+    partitions: {
+      development: told(counts.development),
+      holdOut: told(counts.holdOut),
+      outOfTime: { covered: false, ...told(counts.outOfTime) },
+    },
+    declined: counts.declined,
+  };
+}
+
+/** Whether the outcome column, read by itself, says good: for the bad rate of what an exclusion takes out. */
+function goodTest(content: SampleDefinitionContent, columns: ReadonlyMap<string, SourceColumn>): (row: number) => boolean {
+  const column = columns.get(content.outcome.column);
+  const good = new Set(content.outcome.good);
+  if (column?.kind !== 'texts') return () => false;
+  const byText = column.texts.map((text) => good.has(text));
+  return (row) => byText[column.codes[row]];
+}
