@@ -1,0 +1,120 @@
+import type { Writer } from '../page/writer';
+import { bytesText, plural, rate, timeText, whole } from '../number-texts';
+
+/** 6 Data, lineage, quality. */
+export function writeData(writer: Writer): void {
+  const { input } = writer;
+  const { sourceFile, specification } = input;
+  writer.beginSection('6', 'Data, lineage, quality');
+  if (sourceFile === null) writer.notEvidenced('Source file');
+  else {
+    writer.text(`One file was read ${writer.cite(sourceFile.evidence)}.`);
+    writer.facts([
+      ['File', sourceFile.fileName],
+      ['Size', `${bytesText(sourceFile.bytes)}; ${plural(sourceFile.rows, 'row')}, ${plural(sourceFile.columns, 'column')}`],
+      ['SHA-256', sourceFile.sha256],
+      ['Brought in', `${timeText(sourceFile.broughtInAt)} by ${sourceFile.broughtInBy}`],
+      [
+        'Raw file',
+        sourceFile.replicable
+          ? 'kept, encrypted: the version can be replicated'
+          : `no longer replicable${sourceFile.note === null ? '' : `: ${sourceFile.note}`}`,
+      ],
+    ]);
+    writer.text(
+      sourceFile.sha256 === input.result.dataSha256
+        ? 'The fingerprint of the file is the one the result was calculated from.'
+        : `The fingerprint of the file differs from the one the result was calculated from (${input.result.dataSha256}).`,
+    );
+  }
+  const { data } = specification;
+  writer.facts([
+    [
+      'Read as',
+      `${data.encoding}, delimiter ${data.delimiter === '\t' ? 'tab' : `“${data.delimiter}”`}, decimal sign “${data.decimal}”`,
+    ],
+    ['Missing', data.missing.map((token) => (token === '' ? '(empty)' : token)).join(', ')],
+  ]);
+
+  writer.heading('Quality by column');
+  const { quality } = input;
+  if (quality === null) writer.notEvidenced('Quality of the columns');
+  else {
+    const flagged = quality.columns.filter((column) => column.flags.length > 0);
+    writer.table(
+      'Columns of the file',
+      quality.evidence,
+      {
+        columns: [
+          { title: 'Column', grow: 2 },
+          { title: 'Type' },
+          { title: 'Role', grow: 1 },
+          { title: 'Missing', align: 'right' },
+          { title: 'Special', align: 'right' },
+          { title: 'Distinct', align: 'right' },
+          { title: 'Smallest to largest', grow: 2 },
+          { title: 'Flags', grow: 2 },
+        ],
+        rows: quality.columns.map((column) => ({
+          cells: [
+            writer.label(column.column),
+            column.type,
+            column.protected ? `${column.role}, protected` : column.role,
+            rate(column.missing, quality.rows),
+            rate(
+              column.special.reduce((sum, code) => sum + code.rows, 0),
+              quality.rows,
+            ),
+            whole(column.distinct),
+            column.smallest === null
+              ? column.mostFrequent === null
+                ? '–'
+                : `most often ${column.mostFrequent}`
+              : `${column.smallest} to ${column.largest ?? '–'}`,
+            column.flags.length === 0 ? '–' : column.flags.join('; '),
+          ],
+        })),
+      },
+      flagged.length === 0
+        ? 'No column is flagged.'
+        : `${plural(flagged.length, 'column')} of ${whole(quality.columns.length)} ${flagged.length === 1 ? 'is' : 'are'} flagged.`,
+    );
+    writeSpecialCodes(writer);
+    const barred = quality.columns.filter((column) => column.protected).map((column) => writer.label(column.column));
+    const used = new Set(input.specification.characteristics.map((characteristic) => characteristic.column));
+    const inFit = quality.columns.filter((column) => column.protected && used.has(column.column));
+    if (barred.length > 0) {
+      writer.text(
+        `Protected columns: ${barred.join(', ')} ${writer.cite(quality.evidence)}. ` +
+          (inFit.length === 0
+            ? 'None of them is among the characteristics of the specification.'
+            : `${inFit.map((column) => writer.label(column.column)).join(', ')} stands among the characteristics: see the lender’s citation that permits it.`),
+      );
+    }
+  }
+  writer.authorTexts(6, ['Suitability of sources']);
+}
+
+function writeSpecialCodes(writer: Writer): void {
+  const { quality } = writer.input;
+  if (quality === null) return;
+  const rows = quality.columns.flatMap((column) =>
+    column.special.map((code) => ({
+      cells: [writer.label(column.column), code.code, code.meaning, whole(code.rows), rate(code.rows, quality.rows)],
+    })),
+  );
+  if (rows.length === 0) {
+    writer.text(`No special code is stated ${writer.cite(quality.evidence)}.`);
+    return;
+  }
+  writer.table('Special codes', quality.evidence, {
+    columns: [
+      { title: 'Column', grow: 1 },
+      { title: 'Code', align: 'right' },
+      { title: 'Meaning', grow: 1 },
+      { title: 'Rows', align: 'right' },
+      { title: 'Share', align: 'right' },
+    ],
+    rows,
+  });
+}
