@@ -36,4 +36,4 @@ export type QueryOf<E extends Endpoint> = E extends { query: infer S extends z.Z
 export type BodyOf<E extends Endpoint> = E extends { body: infer S extends z.ZodType } ? z.output<S> : undefined;
 /** What a client sends: the schema's input, where defaults may be left out. */
 export type SentBodyOf<E extends Endpoint> = E extends { body: infer S extends z.ZodType } ? z.input<S> : undefined;
-export type AnswerOf<E extends Endpoint> = E extends { response: infer S extends z.ZodType } ? z.input<S> : undefined;
+export type AnswerOf<E extends Endpoint> = E extends { response: infer S extends z.ZodType } ? z.input<S> : void;

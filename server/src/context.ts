@@ -20,6 +20,8 @@ export interface Context {
   readonly listener: Listener;
   /** Set once the process is asked to stop: readiness ends and nothing new is taken on. */
   readonly stopping: AbortSignal;
+  /** Says that the process is about to end. */
+  beginStop(): void;
   close(): Promise<void>;
 }
 
@@ -43,6 +45,7 @@ export async function openContext(config: Config, log: Log): Promise<Context> {
     boss,
     listener,
     stopping: stop.signal,
+    beginStop: () => stop.abort(),
     async close() {
       stop.abort();
       await listener.close();

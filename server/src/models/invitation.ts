@@ -19,7 +19,7 @@ export class Invitation extends Model<InferAttributes<Invitation>, InferCreation
 export function defineInvitation(sequelize: Sequelize): void {
   Invitation.init(
     {
-      id: { type: DataTypes.UUID, primaryKey: true },
+      id: { type: DataTypes.UUID, primaryKey: true, defaultValue: DataTypes.UUIDV4 },
       name: DataTypes.TEXT,
       email: DataTypes.TEXT,
       roles: DataTypes.ARRAY(DataTypes.TEXT),

@@ -29,7 +29,7 @@ export class PersonRole extends Model<InferAttributes<PersonRole>, InferCreation
 export function definePerson(sequelize: Sequelize): void {
   Person.init(
     {
-      id: { type: DataTypes.UUID, primaryKey: true },
+      id: { type: DataTypes.UUID, primaryKey: true, defaultValue: DataTypes.UUIDV4 },
       name: DataTypes.TEXT,
       email: DataTypes.TEXT,
       passwordHash: DataTypes.TEXT,

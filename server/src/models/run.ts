@@ -30,7 +30,7 @@ export class Run extends Model<InferAttributes<Run>, InferCreationAttributes<Run
 export function defineRun(sequelize: Sequelize): void {
   Run.init(
     {
-      id: { type: DataTypes.UUID, primaryKey: true },
+      id: { type: DataTypes.UUID, primaryKey: true, defaultValue: DataTypes.UUIDV4 },
       kind: DataTypes.TEXT,
       queue: DataTypes.TEXT,
       payload: DataTypes.JSONB,

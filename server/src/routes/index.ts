@@ -1,10 +1,19 @@
 import { healthRoutes } from './health/index';
 import { outOfTimeRoutes } from './out-of-time/index';
+import { invitationRoutes } from './invitations/index';
+import { peopleRoutes } from './people/index';
+import { recordRoutes } from './record/index';
+import { runRoutes } from './runs/index';
+import { sessionRoutes } from './session/index';
+import { setUpRoutes } from './set-up/index';
+import { modelRoutes } from './models/index';
+import { sampleRoutes } from './samples/index';
 import type { Route } from './http/route';
 
 /** Every route of the server. An entity adds its list here. */
 export function allRoutes(): Route[] {
-  const routes: Route[] = [];
+  const routes: Route[] = [...sessionRoutes, ...setUpRoutes, ...invitationRoutes, ...peopleRoutes, ...recordRoutes, ...runRoutes];
+  routes.push(...modelRoutes(), ...sampleRoutes());
   routes.push(...outOfTimeRoutes);
   routes.push(...healthRoutes(() => routes));
   return routes;

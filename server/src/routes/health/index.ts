@@ -1,6 +1,5 @@
 import { live, openApi, ready } from '@tallystone/contracts/health/endpoints';
-import { rows } from '../../database/sql';
-import { migrations } from '../../migrations/index';
+import { readiness } from '../../database/readiness';
 import type { Route } from '../http/route';
 import { defineRoute } from '../http/route';
 import { describeApi } from './open-api';
@@ -24,13 +23,4 @@ export function healthRoutes(described: () => readonly Route[]): Route[] {
     }),
     defineRoute(openApi, { access: 'signed-in', act: () => (description ??= describeApi(described())) }),
   ];
-}
-
-async function readiness(sequelize: Parameters<typeof rows>[0]): Promise<'ok' | 'starting' | 'unavailable'> {
-  try {
-    const [{ applied }] = await rows<{ applied: number }>(sequelize, 'SELECT count(*)::int AS applied FROM migrations');
-    return applied >= migrations.length ? 'ok' : 'starting';
-  } catch {
-    return 'unavailable';
-  }
 }

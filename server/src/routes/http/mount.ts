@@ -5,6 +5,7 @@ import express, { type Request, type RequestHandler, type Response, type Router 
 import type { Transaction } from 'sequelize';
 import type { Context } from '../../context';
 import { inTransaction } from '../../database/transaction';
+import { requestSeconds } from '../../logging/metrics';
 import { demand } from '../../policies/decision';
 import { problemsOf } from '../../problems/from-error';
 import { Problem, notFound } from '../../problems/problem';
@@ -22,8 +23,16 @@ export function mountRoutes(router: Router, context: Context, routes: readonly R
   const limit = limitRequests();
   for (const route of routes) {
     const method = route.endpoint.method.toLowerCase() as 'get' | 'head' | 'post' | 'put' | 'patch' | 'delete';
-    router[method](route.endpoint.path, limit, handlerOf(context, route));
+    router[method](route.endpoint.path, measure(route.endpoint), limit, handlerOf(context, route));
   }
+}
+
+function measure(endpoint: Endpoint): RequestHandler {
+  return (_request, response, next) => {
+    const end = requestSeconds.startTimer({ method: endpoint.method, route: endpoint.path });
+    response.once('close', () => end({ status: String(response.statusCode) }));
+    next();
+  };
 }
 
 function handlerOf(context: Context, route: Route): RequestHandler {
