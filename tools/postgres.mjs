@@ -67,11 +67,12 @@ function findPrograms(wantedMajor) {
   return found[0]?.folder;
 }
 
-/** Runs apt-get with its output on standard error, so that a counted last line on standard output stays the last line. */
+/** Installs packages of Debian, quietly; what apt-get said is shown on standard error when it failed. */
 export function aptInstall(packages, say = () => {}) {
   const env = { ...process.env, DEBIAN_FRONTEND: 'noninteractive' };
   const apt = (...args) => {
-    const done = spawnSync('apt-get', args, { env, stdio: ['ignore', 2, 2] });
+    const done = spawnSync('apt-get', args, { env, stdio: ['ignore', 'pipe', 'pipe'], encoding: 'utf8', maxBuffer: 1 << 26 });
+    if (done.status !== 0) process.stderr.write(`apt-get ${args.join(' ')}:\n${done.stdout ?? ''}${done.stderr ?? ''}`);
     return done.status === 0;
   };
   say(`Installing ${packages.join(', ')} from Debian's packages`);
@@ -106,14 +107,16 @@ function programs(cluster, say) {
   );
 }
 
+/** True when PostgreSQL's programs are on this machine. */
+export const programsArePresent = () => candidateFolders().length > 0;
+
 /**
- * Makes sure that PostgreSQL's programs are there, installing them as root; `before` runs first when that is going to take a while.
+ * Makes sure that PostgreSQL's programs are there, installing them as root.
  *
  * @param {string | undefined} data data folder, when it is known already: an existing cluster decides the version
  * @throws {SetupProblem} saying what to install
  */
-export async function ensureProgramsFor(data, { say = () => {}, before } = {}) {
-  if (before && candidateFolders().length === 0) await before();
+export function ensureProgramsFor(data, { say = () => {} } = {}) {
   programs(places(data ?? '.').cluster, say);
 }
 

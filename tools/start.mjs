@@ -19,7 +19,7 @@ import { setTimeout as sleep } from 'node:timers/promises';
 import { ensureBuilt } from './build.mjs';
 import { ROOT, checkNode, ensurePackages, runProgram } from './install.mjs';
 import { ensureKeys } from './keys.mjs';
-import { SetupProblem, barredFolder, ensureProgramsFor, makeDataFolder, startPostgres, stopPostgres, writePrivately } from './postgres.mjs';
+import { SetupProblem, barredFolder, ensureProgramsFor, makeDataFolder, programsArePresent, startPostgres, stopPostgres, writePrivately } from './postgres.mjs';
 
 const HOST = process.env.HOST || '127.0.0.1';
 const DRAIN_MS = 35_000;
@@ -309,7 +309,14 @@ async function main() {
   process.on('SIGHUP', () => void stop(0, 'Stopping'));
   watchParents();
 
-  if (!existing) await ensureProgramsFor(process.env.TALLYSTONE_DATA, { say, before: () => checkPort(port) });
+  let packages;
+  if (!existing && !programsArePresent()) {
+    await checkPort(port);
+    // Begun first: apt-get holds this process up, and npm works on beside it. A failure is met where it is awaited.
+    packages = ensurePackages({ say, onChild: track });
+    packages.catch(() => {});
+  }
+  if (!existing) ensureProgramsFor(process.env.TALLYSTONE_DATA, { say });
   state.data = chooseDataFolder(!existing);
   makeDataFolder(state.data, !existing);
   const runFile = path.join(state.data, 'run.json');
@@ -319,7 +326,7 @@ async function main() {
   noteRun();
 
   const keys = ensureKeys(state.data);
-  const packages = ensurePackages({ say, onChild: track });
+  packages ??= ensurePackages({ say, onChild: track });
   const postgres = existing ? Promise.resolve(existing) : startPostgres({ data: state.data, say });
   // Known from here on, so that an early end stops it even while it is still starting.
   state.ownPostgres = !existing;
