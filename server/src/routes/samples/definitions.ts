@@ -38,6 +38,7 @@ export function definitionRoutes(): Route[] {
     }),
     defineRoute(endpoints.checkDraft, {
       access: 'signed-in',
+      ownTransactions: true,
       find: async ({ context, params, tx }) => findDraft(context, await findSample(context.sequelize, params.modelId, params.sampleId, tx), tx),
       authorise: ({ person, subject }) => canDefineSample(person, subject.sample),
       act: ({ context, subject }) => checkDraft(context, subject),

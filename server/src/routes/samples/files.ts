@@ -37,6 +37,7 @@ export function fileRoutes(): Route[] {
     }),
     defineRoute(endpoints.previewReading, {
       access: 'signed-in',
+      ownTransactions: true,
       find: ({ context, params, tx }) => findSample(context.sequelize, params.modelId, params.sampleId, tx),
       authorise: ({ person, subject }) => canReadFile(person, subject),
       act: ({ context, subject, body }) => previewReading(context, subject, body),
