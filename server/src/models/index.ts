@@ -1,5 +1,6 @@
 import type { Sequelize } from 'sequelize';
 import { defineBinning } from './binning';
+import { defineFit } from './fit';
 import { defineInvitation } from './invitation';
 import { defineModel } from './model';
 import { definePerson } from './person';
@@ -16,4 +17,5 @@ export function defineModels(sequelize: Sequelize): void {
   defineModel(sequelize);
   defineSample(sequelize);
   defineBinning(sequelize);
+  defineFit(sequelize);
 }

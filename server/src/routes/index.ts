@@ -1,4 +1,7 @@
+import { comparisonRoutes } from './comparison/index';
+import { fitRoutes } from './fits/index';
 import { healthRoutes } from './health/index';
+import { binningRoutes } from './binnings/index';
 import { outOfTimeRoutes } from './out-of-time/index';
 import { invitationRoutes } from './invitations/index';
 import { peopleRoutes } from './people/index';
@@ -14,7 +17,8 @@ import type { Route } from './http/route';
 export function allRoutes(): Route[] {
   const routes: Route[] = [...sessionRoutes, ...setUpRoutes, ...invitationRoutes, ...peopleRoutes, ...recordRoutes, ...runRoutes];
   routes.push(...modelRoutes(), ...sampleRoutes());
-  routes.push(...outOfTimeRoutes);
+  routes.push(...fitRoutes, ...comparisonRoutes);
+  routes.push(...outOfTimeRoutes, ...binningRoutes);
   routes.push(...healthRoutes(() => routes));
   return routes;
 }

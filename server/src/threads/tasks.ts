@@ -1,12 +1,22 @@
+import { classColumn, reclassFine, splitColumn } from '../classing/class-column';
+import { compareFits } from './compare-fits';
+import { fitPenaltyPath } from './fit-path';
 import { hashPassword, verifyPassword } from './passwords';
+import { prepareSample } from './prepare-sample';
 
 /**
  * Every task that can run in a thread, by name. A task is a pure function (payload, control) => result; it knows no database and no clock.
  * Another entity adds an import and a line. The pool takes only the types from here, so that the web server does not load the numbers.
  */
 export const tasks = {
+  'binning.class': classColumn,
+  'binning.reclass': reclassFine,
+  'binning.split': splitColumn,
+  'fit.compare': compareFits,
+  'fit.path': fitPenaltyPath,
   'password.hash': hashPassword,
   'password.verify': verifyPassword,
+  'sample.prepare': prepareSample,
 } as const;
 
 export type Tasks = typeof tasks;

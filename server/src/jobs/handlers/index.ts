@@ -1,6 +1,7 @@
 import type { Handler } from '../handler';
+import { fitPenaltyPath } from './fits';
 import { verifyRecord } from './record';
 import { confirmSample, readSample } from './samples';
 
 /** Everything a worker can do. An entity adds its handlers here. */
-export const handlers: readonly Handler[] = [verifyRecord, readSample, confirmSample];
+export const handlers: readonly Handler[] = [verifyRecord, readSample, confirmSample, fitPenaltyPath];

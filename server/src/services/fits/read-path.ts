@@ -2,7 +2,7 @@ import type { FitPath } from '@tallystone/contracts/fits/schema';
 import type { Sequelize } from 'sequelize';
 import { FittedPath } from '../../models/fit';
 import { notFound } from '../../problems/problem';
-import { outOfTimeState } from '../out-of-time/state';
+import { outOfTimeState } from '../out-of-time/cover';
 import type { FoundFit } from './find-fit';
 
 /**

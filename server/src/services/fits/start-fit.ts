@@ -14,7 +14,7 @@ import { binningCharacteristics } from '../binnings/characteristics-of';
 import { findBinning } from '../binnings/find-binning';
 import type { FoundModel } from '../models/find-model';
 import { appendRecord } from '../record/append';
-import { findDefinition } from '../samples/find-definition';
+import { findDefinition } from '../samples/definitions';
 import { buildSpecification, canonical } from '../specifications/build-specification';
 import { type FoundFit, findFit } from './find-fit';
 

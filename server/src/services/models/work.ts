@@ -1,5 +1,6 @@
 import type { ModelWork, WorkStep, WorkStepName, WorkStepState } from '@tallystone/contracts/models/schema';
 import type { Sequelize } from 'sequelize';
+import { fitWorkStep } from '../fits/work-step';
 import { sampleWorkStep } from '../samples/work-step';
 
 /** What one entity says about its step: whether it is done or waits for a decision, in one short caption. */
@@ -25,7 +26,7 @@ const captions: Record<WorkStepName, string> = {
 const reporters: Record<WorkStepName, StepReporter> = {
   sample: sampleWorkStep,
   binning: async () => null,
-  fit: async () => null,
+  fit: fitWorkStep,
   scorecard: async () => null,
   version: async () => null,
   validation: async () => null,

@@ -1,0 +1,151 @@
+import type { ComparedCharacteristic, ComparedFit, Comparison, PairedTest } from '@tallystone/contracts/comparison/schema';
+import { problemCodes } from '@tallystone/contracts/problems/codes';
+import type { PartitionName } from '@tallystone/contracts/result/types';
+import type { Specification } from '@tallystone/contracts/specification/types';
+import { scaleToPoints } from '@tallystone/numeric';
+import canonicalize from 'canonicalize';
+import { Op, type Sequelize } from 'sequelize';
+import { Fit, FittedPath, type StoredPath } from '../../models/fit';
+import { Problem, notFound } from '../../problems/problem';
+import type { ComparedFitFigures } from '../../threads/compare-fits';
+import { runInThread } from '../../threads/run-in-thread';
+import { type FoundFit, findFits } from '../fits/find-fit';
+import { outOfTimeState } from '../out-of-time/cover';
+import { findDefinition } from '../samples/definitions';
+import { loadColumns } from '../samples/load-columns';
+import { differingSettings } from './settings';
+
+/** A fit with what it is compared at. */
+interface Side {
+  readonly fit: FoundFit;
+  readonly specification: Specification;
+  readonly path: StoredPath;
+  readonly index: number;
+}
+
+/**
+ * Fits side by side at the penalty chosen for each (by the one-standard-error rule where nothing is chosen yet). Out-of-time joins in only where
+ * every sample definition concerned has been opened.
+ *
+ * @throws Problem 404 for a fit that is not of this model, 422 for one that has no path
+ */
+export async function compare(sequelize: Sequelize, modelId: string, ids: readonly string[]): Promise<Comparison> {
+  const all = new Map((await findFits(sequelize, modelId)).map((fit) => [fit.id, fit]));
+  const fits = ids.map((id) => all.get(id));
+  if (!fits.every((fit) => fit !== undefined)) throw notFound();
+  const waiting = fits.filter((fit) => fit.state !== 'ready');
+  if (waiting.length > 0) {
+    throw new Problem(422, problemCodes.invalid, 'Only fits that have run to their end can be compared.', {
+      problems: waiting.map((fit) => ({ code: problemCodes.invalid, message: `“${fit.name}” is ${fit.state}.`, where: { fit: fit.id } })),
+    });
+  }
+  const sides = await sidesOf(fits);
+  const states = await Promise.all(fits.map((fit) => outOfTimeState(sequelize, fit.definitionId)));
+  const state = states.every((one) => one === 'none') ? 'none' : states.every((one) => one === 'opened') ? 'opened' : 'covered';
+  const partitions: PartitionName[] = state === 'opened' ? ['development', 'holdOut', 'outOfTime'] : ['development', 'holdOut'];
+  const figures = await runInThread('fit.compare', { fits: await Promise.all(sides.map((side) => toScore(sequelize, side))), partitions });
+  const note = figures.sameRows ? null : 'The fits do not see the same rows in the same partitions: figures stand side by side, but no difference is tested.';
+  return {
+    fits: sides.map((side, place) => presentSide(side, figures.fits[place])),
+    sameRows: figures.sameRows,
+    rowsNote: note,
+    outOfTimeState: state,
+    settings: differingSettings(sides.map(({ specification }) => specification)),
+    characteristics: comparedCharacteristics(sides),
+    tests: testsOf(sides, figures.fits),
+  };
+}
+
+async function sidesOf(fits: readonly FoundFit[]): Promise<Side[]> {
+  const ids = fits.map((fit) => fit.id);
+  const [specifications, paths] = await Promise.all([
+    Fit.findAll({ where: { id: { [Op.in]: ids } }, attributes: ['id', 'specification'], raw: true }),
+    FittedPath.findAll({ where: { fitId: { [Op.in]: ids } }, attributes: ['fitId', 'path'], raw: true }),
+  ]);
+  return fits.map((fit) => {
+    const text = specifications.find((row) => row.id === fit.id)?.specification;
+    const path = paths.find((row) => row.fitId === fit.id)?.path;
+    if (text === undefined || path === undefined) throw new Error(`Fit ${fit.id} is ready without a path`);
+    return { fit, specification: JSON.parse(text) as Specification, path, index: fit.choice?.place ?? path.crossValidation.oneStandardError };
+  });
+}
+
+async function toScore(sequelize: Sequelize, { fit, specification, path, index }: Side) {
+  const definition = await findDefinition(sequelize, fit.definitionId);
+  if (!definition) throw new Error(`Fit ${fit.id} has no sample definition`);
+  const { rows, columns } = await loadColumns(sequelize, definition.sampleId, specification);
+  return {
+    specification,
+    rows,
+    columns,
+    intercept: path.intercepts[index],
+    coefficients: path.coefficients[index],
+    woe: path.characteristics.map(({ bins }) => bins.map((bin) => bin.woe)),
+  };
+}
+
+function presentSide({ fit, path, index }: Side, { metrics }: ComparedFitFigures): ComparedFit {
+  return {
+    id: fit.id,
+    number: fit.number,
+    name: fit.name,
+    index,
+    lambda: path.lambdas[index],
+    mixing: fit.settings.mixing,
+    chosenBy: fit.choice?.rule ?? 'not chosen',
+    kept: path.kept[index],
+    ...metrics,
+  };
+}
+
+/** Characteristics of all fits in the order of the first that has them. */
+export function comparedCharacteristics(sides: readonly Pick<Side, 'specification' | 'path' | 'index'>[]): ComparedCharacteristic[] {
+  const columns = [...new Set(sides.flatMap(({ path }) => path.characteristics.map(({ column }) => column)))];
+  const ranges = sides.map(pointsRanges);
+  return columns.map((column) => {
+    const places = sides.map(({ path }) => path.characteristics.findIndex((entry) => entry.column === column));
+    const coefficients = sides.map(({ path, index }, k) => (places[k] < 0 ? null : path.coefficients[index][places[k]]));
+    const signs = new Set(coefficients.filter((value) => value !== null && value !== 0).map((value) => Math.sign(value as number)));
+    const bins = sides
+      .filter((_, k) => places[k] >= 0)
+      .map(({ specification }) => specification.characteristics.find((entry) => entry.column === column))
+      .map((entry) => canonicalize(binsOnly(entry)));
+    const label = sides.flatMap(({ path }, k) => (places[k] < 0 ? [] : [path.characteristics[places[k]].label]))[0];
+    return {
+      column,
+      label,
+      coefficients,
+      pointsRange: ranges.map((range) => range.get(column) ?? null),
+      signFlip: signs.size > 1,
+      binsDiffer: new Set(bins).size > 1,
+    };
+  });
+}
+
+/** What makes the bins of a characteristic, without how it enters the fit. */
+function binsOnly(entry: Specification['characteristics'][number] | undefined): unknown {
+  if (!entry || entry.coding === 'linear') return null;
+  return entry.kind === 'numeric'
+    ? { edges: entry.edges, closed: entry.closed, special: entry.special, missing: entry.missing }
+    : { groups: entry.groups, special: entry.special, missing: entry.missing, unseen: entry.unseen };
+}
+
+function pointsRanges({ path, index }: Pick<Side, 'path' | 'index'>): Map<string, number> {
+  const kept = path.characteristics.map((entry, j) => ({ ...entry, coefficient: path.coefficients[index][j] })).filter(({ coefficient }) => coefficient !== 0);
+  const { pointsRounded } = scaleToPoints(path.scaling, {
+    intercept: path.intercepts[index],
+    terms: kept.map(({ coefficient, bins }) => ({ coefficient, woe: bins.map((bin) => bin.woe) })),
+  });
+  return new Map(kept.map(({ column }, k) => [column, Math.max(...pointsRounded[k]) - Math.min(...pointsRounded[k])]));
+}
+
+function testsOf(sides: readonly Side[], figures: readonly ComparedFitFigures[]): PairedTest[] {
+  return figures.flatMap(({ paired }, place) =>
+    paired === null
+      ? []
+      : (['development', 'holdOut', 'outOfTime'] as const).flatMap((partition) => {
+          const test = paired[partition];
+          return test === null ? [] : [{ partition, fitId: sides[place].fit.id, ...test }];
+        }),
+  );
+}
