@@ -28,7 +28,7 @@ export const appConfig: ApplicationConfig = {
     { provide: ErrorHandler, useClass: ShowsFailures },
     {
       provide: MAT_FORM_FIELD_DEFAULT_OPTIONS,
-      useValue: { appearance: 'outline', subscriptSizing: 'dynamic', floatLabel: 'always' } satisfies MatFormFieldDefaultOptions,
+      useValue: { appearance: 'outline', subscriptSizing: 'dynamic', floatLabel: 'always', hideRequiredMarker: true } satisfies MatFormFieldDefaultOptions,
     },
   ],
 };

@@ -48,7 +48,10 @@ const said: Readonly<Record<WorkStep['state'], string>> = {
             <a [routerLink]="entry.path" [attr.aria-current]="entry.on ? 'step' : null">
               <span class="name">{{ entry.title }}</span>
               <span class="line" aria-hidden="true">
-                <svg width="28" height="12" viewBox="0 0 28 12" focusable="false"><path d="M0 1.2h8l6 9 6-9h8" /></svg>
+                <svg width="100%" height="14" focusable="false">
+                  <path class="after" d="M20 3H4000" />
+                  <path class="notch" d="M0 3h8l6 9 6-9" />
+                </svg>
               </span>
               <span class="caption">{{ entry.caption }}</span>
               <span class="ts-hidden">, {{ entry.said }}</span>

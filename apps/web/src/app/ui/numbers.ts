@@ -14,7 +14,7 @@ export function fixed(value: Maybe, decimals: number): string {
   if (!Number.isFinite(value)) return value > 0 ? '\u221E' : `${MINUS}\u221E`;
   const text = Math.abs(value).toFixed(decimals);
   const [whole, fraction] = text.split('.');
-  const grouped = whole.length > 4 || whole.length === 4 ? whole.replace(/\B(?=(\d{3})+(?!\d))/g, THIN_SPACE) : whole;
+  const grouped = whole.replace(/\B(?=(\d{3})+(?!\d))/g, THIN_SPACE);
   const negative = value < 0 && /[1-9]/.test(text);
   return (negative ? MINUS : '') + grouped + (fraction === undefined ? '' : `.${fraction}`);
 }

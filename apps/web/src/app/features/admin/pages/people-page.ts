@@ -78,21 +78,23 @@ const invitationTones: Readonly<Record<Invitation['state'], StatusTone>> = {
         </ts-table>
       }
       @if (openInvitations().length > 0) {
-        <section aria-labelledby="invitations">
-          <h2 id="invitations">Invitations</h2>
+        <div>
+          <h2>Invitations</h2>
           <ts-table caption="Invitations" [columns]="invitationColumns" [rows]="openInvitations()" [identify]="byInvitation" [copyable]="false">
             <ng-template tsCell="state" [tsCellRows]="openInvitations()" let-row>
               <ts-status [tone]="tones[row.state]">{{ row.state }}</ts-status>
             </ng-template>
             <ng-template tsCell="acts" [tsCellRows]="openInvitations()" let-row>
               @if (row.state === 'open') {
-                <button matButton type="button" [attr.aria-label]="'Withdraw the invitation of ' + row.name" (click)="withdraw(row)">
-                  Withdraw
-                </button>
+                <span class="acts">
+                  <button matButton type="button" [attr.aria-label]="'Withdraw the invitation of ' + row.name" (click)="withdraw(row)">
+                    Withdraw
+                  </button>
+                </span>
               }
             </ng-template>
           </ts-table>
-        </section>
+        </div>
       }
     </div>
   `,

@@ -13,7 +13,7 @@ import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { StatusMark } from '../../../ui/status-mark';
-import { RecordEntry, RecordFilter, RecordOfActions, RecordVerification, recordHead, recordPage } from '../data/record';
+import { RecordFilter, RecordOfActions, RecordVerification, recordHead, recordPage } from '../data/record';
 import { actionWords, changedFields, notedFields } from '../ui/entry-words';
 
 const narrowings = ['action', 'entity', 'entityId', 'modelId', 'actorId'] as const;
@@ -147,10 +147,6 @@ export class RecordPage {
     if (next !== null) {
       void this.router.navigate([], { queryParams: { before: String(next) }, queryParamsHandling: 'merge' });
     }
-  }
-
-  protected hasMore(entry: RecordEntry): boolean {
-    return entry.withheld || entry.before != null || entry.after != null || entry.detail != null || entry.entityId != null;
   }
 
   /** A person's id in the address reads as their name where an entry on the page knows it. */

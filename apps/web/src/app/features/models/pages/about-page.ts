@@ -62,9 +62,12 @@ interface Clash {
       justify-content: space-between;
       gap: 0 16px;
       list-style: none;
-      padding: 4px 0;
+      padding: 6px 0;
       min-height: 44px;
       border-bottom: 1px solid var(--ts-hairline);
+    }
+    .members .ts-caption {
+      display: block;
     }
     .add {
       display: grid;

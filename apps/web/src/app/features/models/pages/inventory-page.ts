@@ -22,7 +22,6 @@ const columns: readonly Column<ModelSummary>[] = [
   { key: 'number', label: 'Number', value: (row) => row.inventoryNumber, sortable: true },
   { key: 'state', label: 'State', value: (row) => row.state, sortable: true },
   { key: 'product', label: 'Product', value: (row) => row.product, sortable: true },
-  { key: 'population', label: 'Population', value: (row) => row.population },
   { key: 'jurisdiction', label: 'Jurisdiction', value: (row) => row.jurisdiction, sortable: true },
   { key: 'tier', label: 'Tier', kind: 'count', value: (row) => row.materialityTier, sortable: true },
   { key: 'owner', label: 'Owner', value: (row) => row.owner, sortable: true },

@@ -110,6 +110,7 @@ export const tiers: readonly { readonly tier: ModelFields['materialityTier']; re
       display: grid;
       grid-template-columns: repeat(auto-fit, minmax(min(100%, 220px), 1fr));
       gap: 18px;
+      align-items: start;
     }
     mat-radio-group {
       display: flex;

@@ -15,18 +15,14 @@ import { Mark } from '../../../ui/mark';
           <p class="ts-second">{{ text() }}</p>
         }
       </div>
-      <ng-content />
+      <div class="body"><ng-content /></div>
     </main>
     <div class="picture" aria-hidden="true">
-      <svg viewBox="0 0 560 300" focusable="false">
-        <path
-          class="half"
-          d="M20 40h520v76h-46l-16 26-16-26h-62l-16 26-16-26h-24l-16 26-16-26h-98l-16 26-16-26h-24l-16 26-16-26H20z"
-        />
+      <svg viewBox="0 0 560 206" focusable="false">
+        <path class="half" d="M0 0h560v76h-64l-17 28-17-28h-74l-17 28-17-28h-26l-17 28-17-28H190l-17 28-17-28h-26l-17 28-17-28H0z" />
         <path
           class="other"
-          d="M20 260h520v-76h-46l-16 26-16-26h-62l-16 26-16-26h-24l-16 26-16-26h-98l-16 26-16-26h-24l-16 26-16-26H20z"
-          transform="translate(0 -26)"
+          d="M1 205h558v-94h-63l-17 28-17-28h-74l-17 28-17-28h-26l-17 28-17-28H190l-17 28-17-28h-26l-17 28-17-28H1z"
         />
       </svg>
       <p>One half with the modeller, one with the validator. A version counts when the halves match.</p>
@@ -44,7 +40,9 @@ import { Mark } from '../../../ui/mark';
       gap: 24px;
       padding: clamp(28px, 12vh, 128px) var(--ts-margin) 48px clamp(var(--ts-margin), 9vw, 128px);
     }
-    .form > * {
+    .body {
+      display: grid;
+      gap: 20px;
       max-width: 400px;
     }
     .brand {
@@ -90,7 +88,7 @@ import { Mark } from '../../../ui/mark';
       .form {
         padding: 28px var(--ts-margin) 48px;
       }
-      .form > * {
+      .body {
         max-width: 480px;
       }
     }
