@@ -1,0 +1,255 @@
+import type { DraftContent } from '@tallystone/contracts/samples/definition';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { prepare } from '../../server/src/replay/prepare';
+import { loadPrepared } from '../../server/src/services/samples/definitions';
+import { openSample } from '../../server/src/storage/columnStore';
+import { readRawFile } from '../../server/src/storage/rawFiles';
+import { IntakeServer, type Visitor } from '../support/intake';
+
+let server: IntakeServer;
+let modeller: Visitor;
+let other: Visitor;
+let validator: Visitor;
+let modelId: string;
+
+beforeAll(async () => {
+  server = await IntakeServer.start();
+  modeller = await server.signIn('marian', 'modeller');
+  other = await server.signIn('oswin', 'modeller');
+  validator = await server.signIn('vera', 'validator');
+  modelId = await modeller.model();
+});
+afterAll(() => server.stop());
+
+const days = (row: number): string => new Date(Date.UTC(2023, 0, 1 + (row % 900))).toISOString().slice(0, 10);
+
+/** 600 invented applicants: every ninth is bad, every seventh declined and without an outcome, twenty are staff. */
+function applicants(rows = 600): string {
+  const lines = ['application_id,applied_on,age,income,home,channel,bureau_score,gender,decision,bad'];
+  for (let row = 0; row < rows; row++) {
+    const declined = row % 7 === 0;
+    const cells = [
+      `SM-${String(row).padStart(6, '0')}`,
+      days(row * 3),
+      18 + ((row * 7) % 60),
+      (900 + ((row * 37) % 5000) / 2).toFixed(2),
+      ['owner', 'rent', 'parents', ''][row % 4],
+      row % 30 === 0 ? 'staff' : row % 2 === 0 ? 'branch' : 'web',
+      row % 11 === 0 ? -999 : 400 + ((row * 13) % 300),
+      row % 2 === 0 ? 'f' : 'm',
+      declined ? 'declined' : 'accepted',
+      declined ? '' : row % 9 === 0 ? '1' : '0',
+    ];
+    lines.push(cells.join(','));
+  }
+  return `${lines.join('\n')}\n`;
+}
+
+describe('a sample from its file to its definition', () => {
+  let path: string;
+  let sampleId: string;
+  let etag: string;
+  let content: DraftContent;
+
+  it('is read, typed and profiled, with every suggestion to be confirmed', async () => {
+    const sample = await modeller.sample(modelId, applicants());
+    expect(sample.run).toMatchObject({ state: 'succeeded', kind: 'sample.read', result: { rows: 600, columns: 10 } });
+    ({ path, id: sampleId } = sample);
+    const { body: shown } = await modeller.get(path).expect(200);
+    expect(shown).toMatchObject({ state: 'ready', rows: 600, columns: 10, problems: [], runId: null, abilities: ['read-file', 'define', 'discard'] });
+    const { body } = await modeller.get(`${path}/columns`).expect(200);
+    const roles = Object.fromEntries(body.columns.map((column: { column: string; suggestedRole: string }) => [column.column, column.suggestedRole]));
+    expect(roles).toEqual({
+      application_id: 'identifier',
+      applied_on: 'application date',
+      age: 'characteristic',
+      income: 'characteristic',
+      home: 'characteristic',
+      channel: 'characteristic',
+      bureau_score: 'characteristic',
+      gender: 'characteristic',
+      decision: 'decision',
+      bad: 'outcome',
+    });
+    const bureau = body.columns[6];
+    expect(bureau).toMatchObject({ kind: 'numeric', specialSuspects: [{ value: '-999', count: 55 }] });
+    expect(body.columns[4]).toMatchObject({ kind: 'categorical', missing: 150, distinct: 3 });
+  });
+
+  it('keeps what identifies people as keyed hashes in the columns, and the file itself encrypted', async () => {
+    const source = await openSample(server.context.sequelize, sampleId, ['application_id', 'income']);
+    const ids = source.column('application_id');
+    if (ids?.kind !== 'texts') throw new Error('Identifiers are texts');
+    expect(ids.texts).toHaveLength(600);
+    expect(ids.texts.every((text) => /^[\w-]{22}$/.test(text))).toBe(true);
+    const { body } = await modeller.get(`${path}/columns`).expect(200);
+    expect(body.columns[0]).toMatchObject({ hashed: true, mostFrequent: [], distinct: 600 });
+    const [chunks] = await server.context.sequelize.query('SELECT content FROM raw_chunks');
+    expect((chunks as { content: Buffer }[]).some((chunk) => chunk.content.includes('SM-000'))).toBe(false);
+    const parts: Buffer[] = [];
+    for await (const bytes of readRawFile(server.context.sequelize, server.context.config.keys.rawFiles.subarray(0, 32), sampleId)) parts.push(bytes);
+    expect(Buffer.concat(parts).toString()).toBe(applicants());
+  });
+
+  it('starts a draft that says what still stands in the way', async () => {
+    const read = await modeller.get(`${path}/draft`).expect(200);
+    etag = read.headers.etag;
+    content = read.body.content;
+    expect(content.outcome).toEqual({ good: ['0'], bad: ['1'], indeterminate: [], excluded: [] });
+    expect(content.declined).toEqual({ values: ['declined'] });
+    expect(content.columns.find(({ column }) => column === 'gender')).toMatchObject({ role: 'not used', protected: true });
+    expect(read.body.problems).toEqual([]);
+  });
+
+  it('saves the draft under its tag only, and loses nothing when two people save', async () => {
+    content = {
+      ...content,
+      columns: content.columns.map((column) =>
+        column.column === 'bureau_score' ? { ...column, special: [{ label: 'no bureau record', values: [-999] }] } : column,
+      ),
+      exclusions: [
+        { reason: 'staff loans', combine: 'all', tests: [{ column: 'channel', in: ['staff'] }] },
+        { reason: 'too young', combine: 'all', tests: [{ column: 'age', below: 21 }] },
+      ],
+      partition: { by: 'seed', seed: 7, holdOutShare: 0.3, outOfTime: { from: '2025-01-01', to: null } },
+    };
+    await modeller.put(`${path}/draft`).send(content).expect(428);
+    const saves = await Promise.all(Array.from({ length: 6 }, () => modeller.put(`${path}/draft`).set('If-Match', etag).send(content)));
+    expect(saves.map(({ status }) => status).sort()).toEqual([200, 412, 412, 412, 412, 412]);
+    const stale = saves.find(({ status }) => status === 412);
+    const saved = saves.find(({ status }) => status === 200);
+    expect(stale?.headers.etag).toBe(saved?.headers.etag);
+    etag = String(saved?.headers.etag);
+  });
+
+  it('reports all problems of a draft together, with their places', async () => {
+    const broken: DraftContent = {
+      ...content,
+      columns: content.columns.map((column) => (column.column === 'income' ? { ...column, role: 'outcome' } : column)),
+      outcome: { good: ['0'], bad: ['0'], indeterminate: [], excluded: [] },
+      exclusions: [
+        { reason: ' ', combine: 'all', tests: [] },
+        { reason: 'unknown', combine: 'any', tests: [{ column: 'nowhere', missing: true }, { column: 'home', below: 3 }] },
+      ],
+      partition: { by: 'column', development: [], holdOut: [], outOfTime: [] },
+    };
+    const saved = await modeller.put(`${path}/draft`).set('If-Match', etag).send(broken).expect(200);
+    etag = saved.headers.etag;
+    const codes = saved.body.problems.map(({ code }: { code: string }) => code);
+    expect(codes).toEqual(expect.arrayContaining(['role-twice', 'value-twice', 'no-reason', 'no-test', 'no-such-column', 'not-comparable', 'no-partition-column', 'no-development']));
+    const refused = await modeller.post(`${path}/definitions`).send({ revision: saved.body.revision }).expect(422);
+    expect(refused.body.problems.length).toBe(codes.length);
+    etag = (await modeller.put(`${path}/draft`).set('If-Match', etag).send(content).expect(200)).headers.etag;
+  });
+
+  it('shows what the draft gives, with out-of-time covered', async () => {
+    const { body } = await modeller.post(`${path}/draft/check`).expect(200);
+    expect(body.problems).toEqual([]);
+    const { waterfall, partitions, declined } = body.counts;
+    expect(waterfall[0]).toMatchObject({ kind: 'source', left: 600 });
+    for (let place = 1; place < waterfall.length; place++) expect(waterfall[place].left).toBe(waterfall[place - 1].left - waterfall[place].out);
+    expect(waterfall.at(-1)).toMatchObject({ kind: 'development', left: partitions.development.rows });
+    // Every thirtieth row from 0 is a member of staff; of these 0, 210, 420 are declined and 0, 90, 180, ... bad.
+    expect(waterfall[1]).toMatchObject({ kind: 'exclusion', label: 'staff loans', out: 20 });
+    expect(partitions.outOfTime).toMatchObject({ covered: true, bads: null, badRate: null });
+    expect(partitions.outOfTime.rows).toBeGreaterThan(0);
+    expect(declined).toBeGreaterThan(0);
+    const { development, holdOut } = partitions;
+    expect(holdOut.goods).toBe(Math.round(0.3 * (development.goods + holdOut.goods)));
+    expect(holdOut.bads).toBe(Math.round(0.3 * (development.bads + holdOut.bads)));
+  });
+
+  it('confirms it as an immutable definition that the chain repeats exactly', async () => {
+    const { body: draft } = await modeller.get(`${path}/draft`).expect(200);
+    const key = 'confirm-once-only';
+    const sends = await Promise.all(
+      Array.from({ length: 5 }, () => modeller.post(`${path}/definitions`).set('Idempotency-Key', key).send({ revision: draft.revision }).expect(202)),
+    );
+    expect(new Set(sends.map(({ body }) => body.id)).size).toBe(1);
+    const run = await modeller.ended(sends[0].body.id);
+    expect(run).toMatchObject({ state: 'succeeded', result: { number: 1 } });
+    const { definitionId } = run.result as { definitionId: string };
+    const { body: definition } = await validator.get(`${path}/definitions/${definitionId}`).expect(200);
+    expect(definition.counts.partitions.outOfTime).toMatchObject({ covered: true, bads: null });
+    expect(definition.content.exclusions[0]).toEqual({ reason: 'staff loans', column: 'channel', in: ['staff'] });
+    const source = await openSample(server.context.sequelize, sampleId, ['bad', 'decision', 'channel', 'age', 'applied_on']);
+    const again = prepare(definition.content, source);
+    const stored = await loadPrepared(server.context.sequelize, definitionId);
+    expect(stored.counts).toEqual(again.counts);
+    expect(Buffer.from(stored.partition).equals(Buffer.from(again.partition))).toBe(true);
+    expect(Buffer.from(stored.outcome).equals(Buffer.from(again.outcome))).toBe(true);
+    expect([...stored.exclusion]).toEqual([...again.exclusion]);
+    const { body: work } = await modeller.get(`/api/models/${modelId}/work`).expect(200);
+    expect(work.steps[0]).toMatchObject({ step: 'sample', state: 'done' });
+  });
+
+  it('cannot be changed or removed once something rests on it, not even in the database', async () => {
+    await modeller.post(`${path}/readings`).send((await modeller.get(path)).body.reading).expect(403);
+    await modeller.delete(path).expect(403);
+    await expect(server.context.sequelize.query(`UPDATE sample_definitions SET number = 2`)).rejects.toThrow(/permission denied/);
+    await expect(server.context.sequelize.query(`DELETE FROM definition_segments`)).rejects.toThrow(/permission denied/);
+  });
+
+  it('is nothing to anyone outside the model', async () => {
+    const otherModel = await other.model('Of another team');
+    for (const tail of ['', '/columns', '/draft', '/definitions']) {
+      await other.get(path + tail).expect(404);
+      // The sample under the address of a model that one does see.
+      await other.get(`/api/models/${otherModel}/samples/${sampleId}${tail}`).expect(404);
+      await validator.get(path + tail).expect(200);
+    }
+    await other.get(`/api/models/${modelId}/samples`).expect(404);
+    await other.put(`${path}/draft`).set('If-Match', etag).send(content).expect(404);
+    await validator.put(`${path}/draft`).set('If-Match', etag).send(content).expect(403);
+    await validator.post(`${path}/draft/check`).expect(403);
+  });
+});
+
+describe('outcomes that cannot be fitted are blocked with their values and counts', () => {
+  const file = (outcomes: readonly string[], extra = ''): string =>
+    `income,bad${extra === '' ? '' : ',w'}\n${outcomes.map((bad, row) => `${1000 + ((row * 37) % 500)},${bad}${extra === '' ? '' : `,${extra.split(' ')[row % extra.split(' ').length]}`}`).join('\n')}\n`;
+  const twenty = (make: (row: number) => string): string[] => Array.from({ length: 40 }, (_, row) => make(row));
+  const draftOf = async (csv: string): Promise<{ path: string; etag: string; content: DraftContent; problems: { code: string; message: string }[] }> => {
+    const { path } = await modeller.sample(modelId, csv);
+    const { body, headers } = await modeller.get(`${path}/draft`).expect(200);
+    return { path, etag: headers.etag, content: body.content, problems: body.problems };
+  };
+
+  it('one class', async () => {
+    const { path, etag, content } = await draftOf(file(twenty(() => '0')));
+    const columns = content.columns.map((column) => (column.column === 'bad' ? { ...column, role: 'outcome' as const } : column));
+    const saved = await modeller.put(`${path}/draft`).set('If-Match', etag).send({ ...content, columns, outcome: { good: ['0'], bad: ['1'], indeterminate: [], excluded: [] } });
+    expect(saved.body.problems).toMatchObject([{ code: 'one-class', message: 'The outcome has one class only: "0" 40×. A fit needs goods and bads.' }]);
+  });
+
+  it('a third value and missing ones, until they are mapped', async () => {
+    const { path, etag, content, problems } = await draftOf(file(twenty((row) => ['0', '0', '1', '2', ''][row % 5])));
+    expect(problems.map(({ message }) => message)).toEqual([
+      'The outcome is "2" in 8 rows: say whether that is good, bad, indeterminate or excluded.',
+      'The outcome is empty in 8 rows: say whether that is good, bad, indeterminate or excluded.',
+    ]);
+    const outcome = { ...content.outcome, indeterminate: ['2'], excluded: [''] };
+    const saved = await modeller.put(`${path}/draft`).set('If-Match', etag).send({ ...content, outcome }).expect(200);
+    expect(saved.body.problems).toEqual([]);
+    const { body } = await modeller.post(`${path}/draft/check`).expect(200);
+    expect(body.counts.waterfall.find(({ kind }: { kind: string }) => kind === 'outcome')).toMatchObject({ out: 8 });
+    const { development, holdOut } = body.counts.partitions;
+    expect(development.indeterminates + holdOut.indeterminates).toBe(8);
+  });
+
+  it('weights below zero, that are no numbers, or all zero', async () => {
+    const outcomes = twenty((row) => (row % 3 === 0 ? '1' : '0'));
+    const withWeight = async (weights: string): Promise<string[]> => {
+      const { path, etag, content } = await draftOf(file(outcomes, weights));
+      const columns = content.columns.map((column) => (column.column === 'w' ? { ...column, role: 'weight' as const } : column));
+      const saved = await modeller.put(`${path}/draft`).set('If-Match', etag).send({ ...content, columns }).expect(200);
+      const { body } = await modeller.post(`${path}/draft/check`).expect(200);
+      expect(body.problems.length).toBeGreaterThanOrEqual(saved.body.problems.length);
+      return body.problems.map(({ code }: { code: string }) => code);
+    };
+    expect(await withWeight('1.5 0.5 -1 2')).toContain('negative-weight');
+    expect(await withWeight('0 0')).toEqual(expect.arrayContaining([expect.stringMatching(/zero-weights/)]));
+    expect(await withWeight('1 abc')).toContain('not-numeric');
+    expect(await withWeight('1 0 2')).toEqual([]);
+  });
+});
