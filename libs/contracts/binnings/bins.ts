@@ -32,7 +32,7 @@ export type Bins = z.infer<typeof Bins>;
 export const Constraints = z.strictObject({
   /** Fine classes of a numeric characteristic, before any is merged. */
   fineClasses: z.int().min(2).max(200, 'At most 200 fine classes').default(100),
-  /** Of development rows. */
+  /** Of development rows with a known value. */
   smallestShare: finite.min(0).max(0.5, 'At most a half').default(0.05),
   smallestGoods: finite.min(0).max(1_000_000).default(20),
   smallestBads: finite.min(0).max(1_000_000).default(20),

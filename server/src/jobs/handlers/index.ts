@@ -1,7 +1,8 @@
 import type { Handler } from '../handler';
+import { classBinning } from './binnings';
 import { fitPenaltyPath } from './fits';
 import { verifyRecord } from './record';
 import { confirmSample, readSample } from './samples';
 
 /** Everything a worker can do. An entity adds its handlers here. */
-export const handlers: readonly Handler[] = [verifyRecord, readSample, confirmSample, fitPenaltyPath];
+export const handlers: readonly Handler[] = [verifyRecord, classBinning, readSample, confirmSample, fitPenaltyPath];

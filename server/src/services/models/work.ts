@@ -1,5 +1,6 @@
 import type { ModelWork, WorkStep, WorkStepName, WorkStepState } from '@tallystone/contracts/models/schema';
 import type { Sequelize } from 'sequelize';
+import { binningWorkStep } from '../binnings/work-step';
 import { fitWorkStep } from '../fits/work-step';
 import { sampleWorkStep } from '../samples/work-step';
 
@@ -25,7 +26,7 @@ const captions: Record<WorkStepName, string> = {
 /** One per step, in the order of the work. Each entity states its own in `services/<entity>/work-step.ts`. */
 const reporters: Record<WorkStepName, StepReporter> = {
   sample: sampleWorkStep,
-  binning: async () => null,
+  binning: binningWorkStep,
   fit: fitWorkStep,
   scorecard: async () => null,
   version: async () => null,

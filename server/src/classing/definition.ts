@@ -1,0 +1,33 @@
+import type { Bins, Constraints } from '@tallystone/contracts/binnings/bins';
+import type { BinnedCharacteristic, Classing } from '@tallystone/contracts/specification/types';
+
+/** The bins of a specification entry: what classing and edits decide. */
+export function binsOfEntry(entry: BinnedCharacteristic): Bins {
+  const special = entry.special.map(({ bin }) => bin);
+  const missing = entry.missing === 'refuse' ? 'own' : entry.missing;
+  return entry.kind === 'numeric'
+    ? { kind: 'numeric', edges: [...entry.edges], special, missing }
+    : { kind: 'categorical', groups: entry.groups.map((group) => [...group]), special, missing, unseen: entry.unseen };
+}
+
+/** The entry with other bins; everything else stays as it is. */
+export function withBins(entry: BinnedCharacteristic, bins: Bins, classing: Classing): BinnedCharacteristic {
+  if (entry.kind === 'numeric' && bins.kind === 'numeric') {
+    const special = entry.special.map((code, index) => ({ ...code, bin: bins.special[index] }));
+    return { ...entry, edges: [...bins.edges], special, missing: bins.missing, classing };
+  }
+  if (entry.kind === 'categorical' && bins.kind === 'categorical') {
+    const special = entry.special.map((code, index) => ({ ...code, bin: bins.special[index] }));
+    return {
+      ...entry,
+      groups: bins.groups.map((group) => [...group]),
+      special,
+      missing: bins.missing,
+      unseen: bins.unseen,
+      classing,
+    };
+  }
+  throw new Error(`"${entry.column}" is ${entry.kind} and cannot have ${bins.kind} bins`);
+}
+
+export const automaticClassing = (constraints: Constraints): Classing => ({ made: 'automatic', ...constraints });

@@ -1,0 +1,11 @@
+import { ClassingResult } from '@tallystone/contracts/binnings/schema';
+import { z } from 'zod';
+import { defineJob } from './job';
+
+/** Classes every characteristic of a binning automatically. */
+export const classBinningJob = defineJob({
+  kind: 'binning.class',
+  queue: 'long',
+  payload: z.strictObject({ binningId: z.uuid() }),
+  result: ClassingResult,
+});
