@@ -1,4 +1,4 @@
-import { Routes } from '@angular/router';
+import { type Routes } from '@angular/router';
 import { keepsUnsavedWork } from '../../core/unsaved-changes';
 
 export const modelFittingRoutes: Routes = [

@@ -4,7 +4,7 @@ import { MatFormFieldModule } from '@angular/material/form-field';
 import { MatSelectModule } from '@angular/material/select';
 import { Router, RouterLink } from '@angular/router';
 import type { ComparedCharacteristic, ComparedFit } from '@tallystone/contracts/comparison/schema';
-import { Column } from '../../../ui/column';
+import { type Column } from '../../../ui/column';
 import { DecisionNotice } from '../../../ui/decision-notice';
 import { DenseTable } from '../../../ui/dense-table';
 import { EmptyState } from '../../../ui/empty-state';

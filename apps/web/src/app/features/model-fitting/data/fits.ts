@@ -3,7 +3,7 @@ import { Injectable, inject } from '@angular/core';
 import type { BinningList, CharacteristicList } from '@tallystone/contracts/binnings/schema';
 import type { Fit, FitList, FitPath, NewChoice, NewFit } from '@tallystone/contracts/fits/schema';
 import { firstValueFrom } from 'rxjs';
-import { Tagged, idempotent, readTagged, saveTagged, tagged } from '../../../core/http/etag';
+import { type Tagged, idempotent, readTagged, saveTagged, tagged } from '../../../core/http/etag';
 
 export type { Fit, FitList, FitPath, NewChoice, NewFit };
 

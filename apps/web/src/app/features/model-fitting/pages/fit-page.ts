@@ -6,11 +6,11 @@ import type { Fit, NewChoice } from '@tallystone/contracts/fits/schema';
 import { filter } from 'rxjs';
 import { CurrentModel } from '../../../core/current-model';
 import { Runs } from '../../../core/events/runs';
-import { Tagged } from '../../../core/http/etag';
+import { type Tagged } from '../../../core/http/etag';
 import { Ask } from '../../../ui/ask';
-import { Column } from '../../../ui/column';
+import { type Column } from '../../../ui/column';
 import { DecisionNotice } from '../../../ui/decision-notice';
-import { FigureFrame, FigureTable } from '../../../ui/figure-frame';
+import { FigureFrame, type FigureTable } from '../../../ui/figure-frame';
 import { plural, significant } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
@@ -60,7 +60,7 @@ export class FitPage {
 
   readonly fitId = input.required<string>();
   /** From the URL: which penalty, counted from 1. */
-  readonly penaltyNumber = input<string | undefined>(undefined, { alias: 'penalty' });
+  readonly penalty = input<string | undefined>(undefined);
 
   private readonly tagged = signal<Tagged<Fit> | null>(null);
   protected readonly problem = signal<unknown>(null);
@@ -74,7 +74,7 @@ export class FitPage {
   protected readonly index = linkedSignal(() => {
     const path = this.pathValue();
     if (!path) return 0;
-    const asked = Number(this.penaltyNumber()) - 1;
+    const asked = Number(this.penalty()) - 1;
     const start = this.fit()?.choice?.index ?? path.crossValidation.oneStandardError;
     return Number.isInteger(asked) && asked >= 0 && asked < path.lambdas.length ? asked : start;
   });
@@ -143,7 +143,7 @@ export class FitPage {
       .subscribe(() => void this.reload());
   }
 
-  protected penalty(lambda: number): string {
+  protected short(lambda: number): string {
     return significant(lambda, 2);
   }
 

@@ -6,14 +6,14 @@ import { RouterLink } from '@angular/router';
 import type { FitSummary } from '@tallystone/contracts/fits/schema';
 import { filter } from 'rxjs';
 import { Runs } from '../../../core/events/runs';
-import { Column } from '../../../ui/column';
+import { type Column } from '../../../ui/column';
 import { CellTemplate, DenseTable } from '../../../ui/dense-table';
 import { EmptyState } from '../../../ui/empty-state';
 import { plural, significant } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
-import { StatusMark, StatusTone } from '../../../ui/status-mark';
+import { StatusMark, type StatusTone } from '../../../ui/status-mark';
 import { Fits } from '../data/fits';
 
 const kindOf = (mixing: number): string => (mixing === 1 ? 'Lasso (L1)' : mixing === 0 ? 'Ridge (L2)' : `Elastic net, mixing ${significant(mixing, 2)}`);

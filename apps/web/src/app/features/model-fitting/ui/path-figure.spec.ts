@@ -1,9 +1,9 @@
-import { Component, signal } from '@angular/core';
+import { ChangeDetectionStrategy, Component, signal } from '@angular/core';
 import { TestBed } from '@angular/core/testing';
 import { smallPath } from '../testing/path';
 import { PathFigure } from './path-figure';
 
-@Component({ imports: [PathFigure], template: '<ts-path-figure [path]="path" [(index)]="index" />' })
+@Component({ changeDetection: ChangeDetectionStrategy.OnPush, imports: [PathFigure], template: '<ts-path-figure [path]="path" [(index)]="index" />' })
 class Host {
   readonly path = smallPath();
   readonly index = signal(2);
