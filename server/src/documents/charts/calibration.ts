@@ -8,9 +8,9 @@ import { logScale, logTicks, Plot } from './plot';
 
 /** Observed bad rate against mean PD by band on logarithmic axes: on the diagonal, as many bads as expected. */
 export function drawCalibration(sheet: Sheet, box: Box, calibrations: readonly BandCalibration[]): void {
-  const side = Math.min(box.height - 26, box.width - 60);
+  const side = Math.min(box.height - 36, box.width - 60);
   const left = box.x + 40;
-  const bottom = box.y + side + 4;
+  const bottom = box.y + side + 12;
   const plot = new Plot(sheet, box);
   const shares = calibrations.flatMap(({ bands }) =>
     bands.flatMap(({ meanPd, rows, bads }) => [meanPd ?? 0, rows > 0 ? bads / rows : 0].filter((share) => share > 0)),
@@ -32,9 +32,9 @@ export function drawCalibration(sheet: Sheet, box: Box, calibrations: readonly B
     0.7,
     2,
   );
-  plot.label('as expected', left + side - 4, bottom - side + 16, { align: 'right' });
+  plot.label('as expected', left + side - 16, bottom - side + 8, { align: 'right' });
   plot.label('mean PD of the band', left + side / 2, bottom + 22, { align: 'centre' });
-  plot.label('observed bad rate', box.x, box.y - 1, { strong: false });
+  plot.label('observed bad rate', box.x, box.y + 5);
 
   const within = (share: number): number => Math.min(to, Math.max(from, share));
   for (const { partition, bands } of calibrations) {

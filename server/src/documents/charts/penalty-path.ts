@@ -43,7 +43,7 @@ function traces(result: Result, label: (column: string) => string): Trace[] {
 }
 
 export function penaltyPathHeight(result: Result): number {
-  return devianceHeight + coefficientHeight + 44 + strokeRow * Math.min(mostRows, result.characteristics.length) + 34;
+  return devianceHeight + coefficientHeight + 44 + strokeRow * Math.min(mostRows, result.characteristics.length) + 10;
 }
 
 /** Deviance, coefficients and a tally of strokes over one penalty axis, strong penalties at the left; one notch at the chosen penalty. */

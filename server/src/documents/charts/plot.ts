@@ -130,7 +130,7 @@ export class Plot {
       0.75,
     );
     let free = -Infinity;
-    for (const tick of ticks) {
+    for (const tick of [...ticks].sort((first, second) => scale(first) - scale(second))) {
       const x = scale(tick);
       const shown = text(tick);
       const half = this.sheet.measure.width(shown, 'regular', type.axis.size) / 2;

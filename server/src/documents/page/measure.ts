@@ -1,8 +1,11 @@
 import type PDFKit from 'pdfkit';
 import { fontFiles, type FontName } from '../fonts';
 
-/** Tabular figures everywhere, so that digits stand under digits. */
-export const figures: PDFKit.Mixins.OpenTypeFeatures[] = ['tnum', 'lnum'];
+const tabular: PDFKit.Mixins.OpenTypeFeatures[] = ['tnum', 'lnum'];
+
+/** Tabular figures, so that digits stand under digits. Texts without digits go without: pdfkit then keeps their words laid out, which is much faster. */
+export const featuresFor = (text: string): PDFKit.Mixins.OpenTypeFeatures[] | undefined =>
+  /\d/.test(text) ? tabular : undefined;
 
 /**
  * Breaks texts into lines before anything is drawn, so that heights are known and nothing runs over an edge. Words that are longer than a line
@@ -19,7 +22,11 @@ export class Measure {
     const key = `${font}\u0000${text}`;
     let unit = this.widths.get(key);
     if (unit === undefined) {
-      unit = this.doc.font(font).fontSize(100).widthOfString(text, { features: figures }) / 100;
+      unit =
+        this.doc
+          .font(font)
+          .fontSize(100)
+          .widthOfString(text, { features: featuresFor(text) }) / 100;
       this.widths.set(key, unit);
     }
     return unit * size;

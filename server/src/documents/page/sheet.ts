@@ -2,7 +2,7 @@ import PDFDocument from 'pdfkit';
 import type PDFKit from 'pdfkit';
 import type { FontName } from '../fonts';
 import { colour, page, textBottom, textWidth, type } from '../tokens';
-import { figures, Measure } from './measure';
+import { featuresFor, Measure } from './measure';
 
 export interface TextStyle {
   font?: FontName;
@@ -156,7 +156,7 @@ export class Sheet {
       .font(font)
       .fontSize(size)
       .fillColor(ink)
-      .text(text, start, baseline, { lineBreak: false, baseline: 'alphabetic', features: figures });
+      .text(text, start, baseline, { lineBreak: false, baseline: 'alphabetic', features: featuresFor(text) });
   }
 
   /** A paragraph that runs over pages where it must, never leaving one line alone at a page's foot. */

@@ -87,10 +87,26 @@ function columnWidths(sheet: Sheet, spec: TableSpec, available: number): number[
   return extents.map((extent) => (extent.least * room) / least);
 }
 
+/** A table whose lines are broken: how much of it must stand together at its start, and the drawing of it. */
+export interface PreparedTable {
+  startHeight: number;
+  draw: () => void;
+}
+
+/** Narrow tables are not drawn out over the page, where the eye would lose the row; those with a figure column fill it. */
+function comfortableWidth(sheet: Sheet, spec: TableSpec): number {
+  if (spec.drawing) return sheet.width;
+  const natural = spec.columns.reduce((sum, column, index) => {
+    const cells = spec.rows.map((row) => sheet.measure.extent(row.cells[index] ?? '', 'regular', size).natural);
+    return sum + gap + Math.max(sheet.measure.extent(column.title, 'semibold', size).least, ...cells);
+  }, -gap);
+  return Math.min(sheet.width, Math.max(250, natural * 1.3));
+}
+
 /** A table with hairlines; its titles come again on each page. Rows stay whole unless one alone is taller than half a page. */
-export function drawTable(sheet: Sheet, spec: TableSpec): void {
+export function prepareTable(sheet: Sheet, spec: TableSpec): PreparedTable {
   const x = spec.x ?? sheet.left;
-  const whole = spec.width ?? sheet.width;
+  const whole = spec.width ?? comfortableWidth(sheet, spec);
   const available = whole - (spec.drawing ? spec.drawing.width + 2 * gap : 0);
   const widths = columnWidths(sheet, spec, available);
   const lefts = widths.map((_, index) => x + widths.slice(0, index).reduce((sum, width) => sum + width + gap, 0));
@@ -196,14 +212,23 @@ export function drawTable(sheet: Sheet, spec: TableSpec): void {
   };
 
   const first = rowCells.slice(0, 2).reduce((sum, cells) => sum + Math.min(heightOf(cells), 120), 0);
-  sheet.ensure(headHeight + first + axisHeight);
-  sheet.grouped('Table', () => {
+  const all = rowCells.reduce((sum, cells) => sum + heightOf(cells), 0);
+  const startHeight = headHeight + (all < 150 ? all : first) + axisHeight;
+  const draw = (): void => {
+    sheet.ensure(startHeight);
+    sheet.grouped('Table', drawRows);
+    drawAxis();
+    sheet.y += 4 + axisHeight;
+  };
+  const drawRows = (): void => {
     drawHead();
     rowCells.forEach((cells, index) => {
       const ink = spec.rows[index].tone === 'quiet' ? colour.ink2 : colour.ink;
       const height = heightOf(cells);
       const tall = height > (textBottom - page.top) / 2;
-      if (sheet.y + height > bottom && !tall) continueTable();
+      // The last two rows stay together, so that none stands alone under its titles.
+      const following = index === rowCells.length - 2 ? Math.min(heightOf(rowCells[index + 1]), 60) : 0;
+      if (sheet.y + height + following > bottom && !tall) continueTable();
       const count = Math.max(...cells.map((cell) => cell.lines.length));
       let from = 0;
       while (from < count) {
@@ -222,7 +247,6 @@ export function drawTable(sheet: Sheet, spec: TableSpec): void {
       const strongNext = spec.rows[index + 1]?.tone === 'strong';
       sheet.rule(sheet.y, strongNext ? colour.ink2 : colour.hairline, 0.5, x, right);
     });
-  });
-  drawAxis();
-  sheet.y += 4 + axisHeight;
+  };
+  return { startHeight, draw };
 }

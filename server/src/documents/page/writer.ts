@@ -2,7 +2,10 @@ import type { DocumentInput } from '../input';
 import { timeText } from '../number-texts';
 import { colour, textBottom, type } from '../tokens';
 import type { Sheet } from './sheet';
-import { drawTable, type Box, type TableSpec } from './table';
+import { prepareTable, type Box, type TableSpec } from './table';
+
+/** Where the numbers of a table or figure come from. */
+export type Citation = string | null | 'record' | 'itself';
 
 export interface ContentsEntry {
   number: string;
@@ -21,6 +24,7 @@ export class Writer {
   private tables = 0;
   private figures = 0;
   private bookmark: PDFKit.PDFOutline | null = null;
+  private waiting: string | null = null;
   private readonly labels: Map<string, string>;
 
   constructor(
@@ -35,8 +39,9 @@ export class Writer {
     return this.labels.get(column) ?? column;
   }
 
-  /** "[E-3]", or the words that say that there is none. */
-  cite(evidence: string | null): string {
+  /** "[E-3]", "[record]" for what the record of actions holds, nothing for a list of evidence itself, or the words that say that there is none. */
+  cite(evidence: Citation): string {
+    if (evidence === 'itself') return '';
     return evidence === null ? '[not evidenced]' : `[${evidence}]`;
   }
 
@@ -80,9 +85,21 @@ export class Writer {
     });
   }
 
-  heading(title: string, keep = 70): void {
+  /** Waits for what it heads, so that it never stands alone at the foot of a page. */
+  heading(title: string): void {
+    this.waiting = title;
+  }
+
+  /** Makes room for a block of this height and draws the heading that waits for it. */
+  private startBlock(height: number): void {
     const { sheet } = this;
-    sheet.ensure(keep + 30);
+    const title = this.waiting;
+    if (title === null) {
+      sheet.ensure(height);
+      return;
+    }
+    this.waiting = null;
+    sheet.ensure(height + 32);
     sheet.space(12);
     if (this.bookmark) sheet.bookmark(title, this.bookmark);
     sheet.paragraph(title, { font: 'semibold', ...type.heading, tag: 'H2' });
@@ -90,9 +107,9 @@ export class Writer {
   }
 
   /** A smaller heading that no bookmark points to. */
-  minor(title: string, aside = '', keep = 60): void {
+  minor(title: string, aside = ''): void {
     const { sheet } = this;
-    sheet.ensure(keep + 20);
+    this.startBlock(64);
     sheet.space(9);
     const size = 10;
     sheet.y += 14;
@@ -107,25 +124,28 @@ export class Writer {
   }
 
   text(words: string): void {
+    this.startBlock(30);
     this.sheet.paragraph(words, { width: Math.min(this.sheet.width, 430) });
     this.sheet.y += 4;
   }
 
   /** Second text: how to read what stands above. */
   note(words: string): void {
+    this.startBlock(30);
     this.sheet.paragraph(words, { ...type.small, colour: colour.ink2 });
     this.sheet.y += 4;
   }
 
-  table(title: string, evidence: string | null, spec: TableSpec, finding = ''): void {
+  table(title: string, evidence: Citation, spec: TableSpec, finding = ''): void {
     this.tables += 1;
-    this.caption(`Table ${this.section}.${this.tables}`, title, evidence, finding, 56);
-    drawTable(this.sheet, spec);
+    const table = prepareTable(this.sheet, spec);
+    this.caption(`Table ${this.section}.${this.tables}`, title, evidence, finding, table.startHeight + 2);
+    table.draw();
   }
 
   figure(
     title: string,
-    evidence: string | null,
+    evidence: Citation,
     options: { height: number; alt: string; finding?: string },
     draw: (box: Box) => void,
   ): void {
@@ -140,12 +160,12 @@ export class Writer {
     sheet.y += options.height + 10;
   }
 
-  private caption(name: string, title: string, evidence: string | null, finding: string, keep: number): void {
+  private caption(name: string, title: string, evidence: Citation, finding: string, keep: number): void {
     const { sheet } = this;
     const findingHeight = finding === '' ? 0 : sheet.height(finding, { ...type.caption, width: 430 });
-    sheet.ensure(type.caption.leading * 2 + findingHeight + keep);
+    this.startBlock(type.caption.leading * 2 + findingHeight + keep + 12);
     sheet.space(8);
-    sheet.paragraph(`${name}  ${title} ${this.cite(evidence)}`, { font: 'semibold', ...type.caption, tag: 'Caption' });
+    sheet.paragraph(`${name}  ${title} ${this.cite(evidence)}`.trimEnd(), { font: 'semibold', ...type.caption, tag: 'Caption' });
     if (finding !== '') sheet.paragraph(finding, { ...type.caption, colour: colour.ink2, width: 430 });
     sheet.y += 1;
   }
@@ -167,7 +187,7 @@ export class Writer {
   private barred(words: string, bar: string, ink: string): void {
     const { sheet } = this;
     const style = { x: sheet.left + 10, width: Math.min(sheet.width - 10, 440), colour: ink };
-    sheet.ensure(32);
+    this.startBlock(34);
     sheet.space(4);
     const from = { page: sheet.pageNumber, y: sheet.y };
     sheet.paragraph(words, style);
@@ -179,9 +199,10 @@ export class Writer {
   facts(entries: readonly (readonly [string, string])[]): void {
     const { sheet } = this;
     const labelWidth = 128;
+    this.startBlock(40);
     sheet.space(2);
     sheet.grouped('Table', () => {
-      for (const [label, value] of entries) {
+      for (const [index, [label, value]] of entries.entries()) {
         const shown = value === '' ? 'not evidenced' : value;
         const valueStyle = {
           x: sheet.left + labelWidth,
@@ -190,11 +211,12 @@ export class Writer {
           leading: 12.5,
           colour: value === '' ? colour.ochreText : colour.ink,
         };
-        sheet.ensure(Math.min(sheet.height(shown, valueStyle), 90) + 6);
+        // The last two stay together, so that none stands alone at the head of a page.
+        sheet.ensure(Math.min(sheet.height(shown, valueStyle), 90) + (index === entries.length - 2 ? 28 : 6));
         sheet.y += 2.5;
         const top = sheet.y;
         sheet.grouped('TR', () => {
-          sheet.tagged('TH', () => sheet.lineAt(label, sheet.left, top + 9.5, { size: 9, colour: colour.ink2 }), {
+          sheet.tagged('TH', () => sheet.lineAt(label, sheet.left, top + 8.8, { size: 9, colour: colour.ink2 }), {
             scope: 'Row',
           });
           sheet.paragraph(shown, { ...valueStyle, tag: 'TD' });
@@ -217,7 +239,7 @@ export class Writer {
         continue;
       }
       for (const text of texts) {
-        this.minor(topic, `written by ${text.author}, ${timeText(text.writtenAt)}`, 40);
+        this.minor(topic, `written by ${text.author}, ${timeText(text.writtenAt)}`);
         this.quoted(text.text);
       }
     }

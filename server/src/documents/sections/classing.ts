@@ -1,7 +1,7 @@
 import type { BinnedCharacteristic, Characteristic } from '@tallystone/contracts/specification/types';
 import type { ResultCharacteristic } from '@tallystone/contracts/result/types';
 import { Ladder, logOdds } from '../charts/log-odds-ladder';
-import type { ClassedCharacteristic } from '../input';
+import type { ClassedCharacteristic, DocumentInput } from '../input';
 import { counted, fixed, percent, plural, rate, significant, timeText, whole, woe } from '../number-texts';
 import type { Writer } from '../page/writer';
 import { isCovered } from './wording';
@@ -97,14 +97,9 @@ function writeBins(writer: Writer, entry: ResultCharacteristic, classed: Classed
   const ladder = new Ladder(sheet, entry.bins, holdOut, outOfTime);
   const drawn = entry.bins.some((bin) => logOdds(bin) !== null);
 
-  writer.sheet.ensure(Math.min(90 + entry.bins.length * 17, 300));
-  writer.minor(
-    writer.label(entry.column),
-    `${entry.column === writer.label(entry.column) ? '' : `${entry.column}, `}IV ${fixed(entry.informationValue, 3)}${kept ? '' : ', not in the model'}`,
-  );
   writer.table(
-    `Bins of ${writer.label(entry.column)}`,
-    classed === null ? input.resultEvidence : (input.classing?.evidence ?? null),
+    writer.label(entry.column),
+    bothEvidences(input, classed),
     {
       columns: [
         { title: 'Bin', grow: 1 },
@@ -113,10 +108,15 @@ function writeBins(writer: Writer, entry: ResultCharacteristic, classed: Classed
         { title: 'Goods', align: 'right' },
         { title: 'Bads', align: 'right' },
         { title: 'Bad rate', align: 'right' },
-        { title: 'hold-out', align: 'right' },
-        { title: 'out-of-time', align: 'right' },
+        { title: 'Hold-out', align: 'right' },
+        { title: 'Out-of-time', align: 'right' },
         { title: 'WOE', align: 'right' },
         ...(kept ? [{ title: 'Points', align: 'right' as const }] : []),
+      ],
+      spans: [
+        { title: '', columns: 1 },
+        { title: 'Development', columns: 5 },
+        { title: 'Bad rate elsewhere', columns: 2 },
       ],
       rows: entry.bins.map((bin, index) => ({
         cells: [
@@ -143,8 +143,16 @@ function writeBins(writer: Writer, entry: ResultCharacteristic, classed: Classed
           }
         : {}),
     },
+    `${entry.column === writer.label(entry.column) ? '' : `Column ${entry.column}; `}IV ${fixed(entry.informationValue, 3)}${kept ? '' : '; not in the model'}.`,
   );
   writeEdits(writer, classed);
+}
+
+/** Counts of development come with the result, those of the other partitions with the classing: both are named where they differ. */
+function bothEvidences(input: DocumentInput, classed: ClassedCharacteristic | null): string | null {
+  const other = classed === null ? null : (input.classing?.evidence ?? null);
+  if (input.resultEvidence === null || other === null || other === input.resultEvidence) return input.resultEvidence ?? other;
+  return `${input.resultEvidence}, ${other}`;
 }
 
 function writeEdits(writer: Writer, classed: ClassedCharacteristic | null): void {

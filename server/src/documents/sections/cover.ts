@@ -32,7 +32,7 @@ export function drawCover(sheet: Sheet, input: DocumentInput, fixedDate: Date): 
     colour: colour.ink2,
   });
 
-  sheet.y = 128;
+  sheet.y = 150;
   const size = model.name.length > 60 ? 22 : 30;
   for (const line of sheet.measure.lines(model.name, 'semibold', size, sheet.width).slice(0, 3)) {
     sheet.paragraph(line, { font: 'semibold', size, leading: size * 1.15, tag: 'H1' });
@@ -45,12 +45,12 @@ export function drawCover(sheet: Sheet, input: DocumentInput, fixedDate: Date): 
     });
   }
 
-  sheet.y += 26;
+  sheet.y += 34;
   drawLife(sheet, input);
   sheet.y += 22;
   drawHalves(sheet, input);
 
-  sheet.y += 14;
+  sheet.y += 24;
   facts(sheet, [
     ['Inventory number', model.inventoryNumber],
     ['Product, population', `${model.product}; ${model.population}`],
@@ -58,7 +58,7 @@ export function drawCover(sheet: Sheet, input: DocumentInput, fixedDate: Date): 
     ['Owner, materiality tier', `${model.owner}; tier ${model.materialityTier}`],
     ['Edition', `${input.edition}, made ${timeText(fixedDate.toISOString())}`],
   ]);
-  sheet.y += 10;
+  sheet.y += 20;
   sheet.paragraph('Fingerprints (SHA-256)', { font: 'semibold', size: 10, leading: 14, tag: 'H2' });
   facts(sheet, [
     ['Version', version.fingerprint],
@@ -68,7 +68,7 @@ export function drawCover(sheet: Sheet, input: DocumentInput, fixedDate: Date): 
     ['Evidence list', evidenceFingerprint(input.evidence)],
     [`Record head, act ${input.recordHead.sequence}`, input.recordHead.hash],
   ]);
-  sheet.y += 8;
+  sheet.y += 14;
   sheet.paragraph(
     'Every number in this document carries the number of the evidence it comes from, in square brackets; the annex lists each with its fingerprint. Where evidence is missing it says “not evidenced”.',
     { size: 8.5, leading: 11.5, colour: colour.ink2, width: 440 },

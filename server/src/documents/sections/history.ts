@@ -8,7 +8,7 @@ export function writeHistory(writer: Writer): void {
   writer.beginSection('18', 'Change history and approvals');
   if (input.history === null || input.history.length === 0) writer.notEvidenced('Change history from the record of actions');
   else {
-    writer.table('From the record of actions', null, {
+    writer.table('From the record of actions', 'record', {
       columns: [
         { title: 'Act', align: 'right' },
         { title: 'When' },
@@ -38,15 +38,11 @@ export function writeAnnex(writer: Writer): void {
   writer.heading('Evidence index');
   if (input.evidence.length === 0) writer.notEvidenced('Evidence');
   else {
-    writer.table('Evidence of this version', null, {
-      columns: [
-        { title: 'No.' },
-        { title: 'What', grow: 3 },
-        { title: 'Made by', grow: 1 },
-        { title: 'When' },
-        { title: 'SHA-256', grow: 4 },
-      ],
-      rows: input.evidence.map((item) => ({ cells: [item.number, item.title, item.madeBy, timeText(item.madeAt), item.sha256] })),
+    writer.table('Evidence of this version', 'itself', {
+      columns: [{ title: 'No.' }, { title: 'What', grow: 1 }, { title: 'SHA-256' }],
+      rows: input.evidence.map((item) => ({
+        cells: [item.number, `${item.title}\n${item.madeBy}, ${timeText(item.madeAt)}`, item.sha256],
+      })),
     });
     writer.facts([['Evidence list', evidenceFingerprint(input.evidence)]]);
     writer.note(

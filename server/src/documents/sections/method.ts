@@ -140,7 +140,7 @@ function writeCrossValidation(writer: Writer): void {
 
 function writeChoice(writer: Writer): void {
   const { penaltyChoice } = writer.input;
-  writer.heading('Choice of the penalty', 50);
+  writer.heading('Choice of the penalty');
   if (penaltyChoice === null) writer.notEvidenced('Choice of the penalty');
   else {
     writer.facts([

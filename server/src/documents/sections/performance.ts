@@ -31,8 +31,11 @@ export function writePerformance(writer: Writer): void {
       'Hosmer-Lemeshow statistic',
       byPartition(input, result.metrics, (entry) => hosmer(entry, (test) => fixed(test.statistic, 2))),
     ],
-    ['degrees of freedom', byPartition(input, result.metrics, (entry) => hosmer(entry, (test) => whole(test.degreesOfFreedom)))],
-    ['p-value', byPartition(input, result.metrics, (entry) => hosmer(entry, (test) => pValue(test.pValue)))],
+    [
+      'Hosmer-Lemeshow degrees of freedom',
+      byPartition(input, result.metrics, (entry) => hosmer(entry, (test) => whole(test.degreesOfFreedom))),
+    ],
+    ['Hosmer-Lemeshow p-value', byPartition(input, result.metrics, (entry) => hosmer(entry, (test) => pValue(test.pValue)))],
     ['Mean score', byPartition(input, result.metrics, (entry) => fixed(entry.meanScore, 1))],
     [
       'Smallest and largest score',
@@ -84,7 +87,7 @@ function writeOpenings(writer: Writer): void {
   );
   if (outOfTime.covered) writer.caution('Out-of-time figures are covered and are not printed.');
   if (outOfTime.openings.length > 0) {
-    writer.table('Openings of the out-of-time figures', null, {
+    writer.table('Openings of the out-of-time figures', 'record', {
       columns: [
         { title: 'When' },
         { title: 'Who', grow: 1 },
@@ -145,7 +148,7 @@ function writeComparisons(writer: Writer): void {
 
 function writeDistributions(writer: Writer): void {
   const { input, sheet } = writer;
-  writer.heading('Score distribution', 190);
+  writer.heading('Score distribution');
   const shown = input.scoreDistributions.filter((entry) => !isCovered(input, entry.partition));
   if (shown.length === 0) writer.notEvidenced('Score distribution');
   const edges = input.result.bands.flatMap((band) => (band.from === null ? [] : [band.from]));
@@ -217,19 +220,19 @@ function writeBands(writer: Writer): void {
     'Edges on the unrounded score, lower edge included; Wilson’s interval. A band above 25 to 30 % is flagged (common practice).',
   );
 
-  writer.heading('Calibration by band', 200);
+  writer.heading('Calibration by band');
   const shown = input.bandCalibrations.filter((entry) => !isCovered(input, entry.partition));
   if (shown.length === 0) writer.notEvidenced('Mean PD by band');
   else {
     writer.figure(
       'Observed bad rate against mean PD by band',
       shown[0].evidence,
-      { height: 236, alt: calibrationInWords(writer), finding: calibrationInWords(writer) },
+      { height: 246, alt: calibrationInWords(writer), finding: calibrationInWords(writer) },
       (box) => drawCalibration(sheet, box, shown),
     );
   }
 
-  writer.heading('Stability of the score', 50);
+  writer.heading('Stability of the score');
   writer.table('Population stability against development', input.resultEvidence, {
     columns: [{ title: 'Partition', grow: 1 }, { title: 'PSI', align: 'right' }, { title: 'Usual reading' }],
     rows: (['holdOut', 'outOfTime'] as const).map((partition) => {

@@ -54,7 +54,7 @@ export function writeSummary(writer: Writer): void {
   writer.heading('Sign-offs');
   if (input.signatures.length === 0) writer.notEvidenced('Sign-offs');
   else {
-    writer.table('Acts on this version', null, {
+    writer.table('Acts on this version', 'record', {
       columns: [
         { title: 'Act' },
         { title: 'Person', grow: 1 },
@@ -79,7 +79,7 @@ export function writeSummary(writer: Writer): void {
   writer.heading('Conditions');
   if (input.conditions.length === 0) writer.text('No condition has been set on this version.');
   else {
-    writer.table('Conditions of use', null, {
+    writer.table('Conditions of use', 'record', {
       columns: [
         { title: 'Condition', grow: 4 },
         { title: 'Kind' },

@@ -29,7 +29,7 @@ export function writeValidation(writer: Writer): void {
   if (validation === null) writer.notEvidenced('Findings');
   else if (validation.findings.length === 0) writer.text('The validator has raised no finding.');
   else {
-    writer.table('Findings', null, {
+    writer.table('Findings', 'record', {
       columns: [
         { title: 'No.' },
         { title: 'Finding', grow: 4 },
@@ -52,15 +52,15 @@ export function writeValidation(writer: Writer): void {
       })),
     });
   }
-  writer.heading('Scope and opinion', 50);
+  writer.heading('Scope and opinion');
   if (validation?.scope == null) writer.notEvidenced('Scope of the validation (to be written by the validator)');
   else {
-    writer.minor('Scope', `written by ${validation.validator}`, 40);
+    writer.minor('Scope', `written by ${validation.validator}`);
     writer.quoted(validation.scope);
   }
   if (validation?.opinion == null) writer.notEvidenced('Opinion (to be written by the validator)');
   else {
-    writer.minor('Opinion', `written by ${validation.validator}`, 40);
+    writer.minor('Opinion', `written by ${validation.validator}`);
     writer.quoted(validation.opinion);
   }
 }

@@ -38,7 +38,8 @@ function characteristic(place: number): { column: string; label: string; strengt
   return { column, label, strength };
 }
 
-const coefficientAt = (strength: number, lambda: number): number => Math.max(0, 1.15 * strength * (1 - lambda / (0.1 * strength)));
+const coefficientAt = (strength: number, lambda: number): number =>
+  Math.max(0, 1.15 * strength * (1 - lambda / (0.1 * strength)));
 
 function binsOf(place: number, coefficient: number, kept: number): ResultCharacteristic {
   const { column, strength } = characteristic(place);
@@ -61,7 +62,13 @@ function binsOf(place: number, coefficient: number, kept: number): ResultCharact
     const label = bin === count - 1 ? 'missing' : bin === 0 ? 'under 10' : `${bin * 10} to under ${bin * 10 + 10}`;
     return { label, rows: good + bads[bin], goods: good, bads: bads[bin], woe, points, pointsRounded: Math.round(points) };
   });
-  return { column, informationValue, coefficient, bins, csi: { holdOut: 0.002 + 0.01 * wave(place), outOfTime: 0.01 + 0.2 * wave(place + 7) * total * 0.05 } };
+  return {
+    column,
+    informationValue,
+    coefficient,
+    bins,
+    csi: { holdOut: 0.002 + 0.01 * wave(place), outOfTime: 0.01 + 0.2 * wave(place + 7) * total * 0.05 },
+  };
 }
 
 function metrics(auc: number, slope: number): ResultMetrics {
@@ -91,7 +98,13 @@ function bands(): ResultBand[] {
       const bads = Math.round(rows * 0.31 * Math.exp(-0.33 * band));
       return { rows, goods: rows - bads, bads };
     };
-    return { from: edges[band - 1] ?? null, to: edges[band] ?? null, development: counts(1000), holdOut: counts(430), outOfTime: counts(280) };
+    return {
+      from: edges[band - 1] ?? null,
+      to: edges[band] ?? null,
+      development: counts(1000),
+      holdOut: counts(430),
+      outOfTime: counts(280),
+    };
   });
 }
 
@@ -133,7 +146,9 @@ function inventedResult(count: number): Result {
     path: penalties.map((penalty) => ({
       lambda: penalty,
       intercept: 2.1,
-      coefficients: Object.fromEntries(places.map((place) => [characteristic(place).column, coefficientAt(characteristic(place).strength, penalty)])),
+      coefficients: Object.fromEntries(
+        places.map((place) => [characteristic(place).column, coefficientAt(characteristic(place).strength, penalty)]),
+      ),
       deviance: 5600 + 9000 * penalty,
       optimalityResidual: 1e-10,
     })),
@@ -195,26 +210,92 @@ export function inventedInput(count = 12): DocumentInput {
       jurisdiction: 'To be named by the lender',
       owner: 'Head of lending',
       materialityTier: 2,
-      intendedUse: 'Support of the decision on an application, together with the policy rules and the judgement of an underwriter.',
+      intendedUse:
+        'Support of the decision on an application, together with the policy rules and the judgement of an underwriter.',
       prohibitedUse: '',
     },
-    version: { label: '1', state: 'Approved with conditions', fingerprint: hash('version'), codeVersion: '0.1.0', frozenBy: modeller, frozenAt: '2026-11-20T10:15:00.000Z' },
+    version: {
+      label: '1',
+      state: 'Approved with conditions',
+      fingerprint: hash('version'),
+      codeVersion: '0.1.0',
+      frozenBy: modeller,
+      frozenAt: '2026-11-20T10:15:00.000Z',
+    },
     signatures: [
       { act: 'frozen', name: modeller, role: 'modeller', at: '2026-11-20T10:15:00.000Z', statement: null, sequence: 212 },
-      { act: 'submitted', name: modeller, role: 'modeller', at: '2026-11-21T09:00:00.000Z', statement: 'Ready for validation.', sequence: 218 },
-      { act: 'concluded', name: validator, role: 'validator', at: '2026-11-26T16:40:00.000Z', statement: 'fit with conditions', sequence: 240 },
+      {
+        act: 'submitted',
+        name: modeller,
+        role: 'modeller',
+        at: '2026-11-21T09:00:00.000Z',
+        statement: 'Ready for validation.',
+        sequence: 218,
+      },
+      {
+        act: 'concluded',
+        name: validator,
+        role: 'validator',
+        at: '2026-11-26T16:40:00.000Z',
+        statement: 'fit with conditions',
+        sequence: 240,
+      },
     ],
-    conditions: [{ text: 'Watch the stability of months since arrears each quarter.', kind: 'monitoring', owner: 'Head of lending', due: '2027-03-31', discharged: null }],
+    conditions: [
+      {
+        text: 'Watch the stability of months since arrears each quarter.',
+        kind: 'monitoring',
+        owner: 'Head of lending',
+        due: '2027-03-31',
+        discharged: null,
+      },
+    ],
     texts: [
-      { section: 1, topic: 'Recommendation', text: 'Use this version for new applications once the second signature is given.\nReview after one year.', author: modeller, writtenAt: '2026-11-20T11:00:00.000Z' },
-      { section: 4, topic: 'Rationale', text: 'Loans to staff follow staff terms and say nothing about other applicants.', author: modeller, writtenAt: '2026-11-20T11:05:00.000Z' },
+      {
+        section: 1,
+        topic: 'Recommendation',
+        text: 'Use this version for new applications once the second signature is given.\nReview after one year.',
+        author: modeller,
+        writtenAt: '2026-11-20T11:00:00.000Z',
+      },
+      {
+        section: 4,
+        topic: 'Rationale',
+        text: 'Loans to staff follow staff terms and say nothing about other applicants.',
+        author: modeller,
+        writtenAt: '2026-11-20T11:05:00.000Z',
+      },
     ],
     columns: result.characteristics.map(({ column }, place) => ({ column, label: characteristic(place).label, unit: null })),
     evidence: [
-      { number: 'E-1', title: 'Sample brought in and profiled', madeBy: modeller, madeAt: '2026-11-10T08:00:00.000Z', sha256: hash('e1') },
-      { number: 'E-2', title: 'Frozen specification and result', madeBy: modeller, madeAt: '2026-11-20T10:15:00.000Z', sha256: hash('e2') },
-      { number: 'E-3', title: 'Replication from the stored raw file', madeBy: validator, madeAt: '2026-11-25T12:00:00.000Z', sha256: hash('e3') },
-      { number: 'E-4', title: 'Stability over 200 resamples', madeBy: validator, madeAt: '2026-11-25T13:00:00.000Z', sha256: hash('e4') },
+      {
+        number: 'E-1',
+        title: 'Sample brought in and profiled',
+        madeBy: modeller,
+        madeAt: '2026-11-10T08:00:00.000Z',
+        sha256: hash('e1'),
+      },
+      {
+        number: 'E-2',
+        title: 'Frozen specification and result',
+        madeBy: modeller,
+        madeAt: '2026-11-20T10:15:00.000Z',
+        sha256: hash('e2'),
+      },
+      {
+        number: 'E-3',
+        title: 'Replication from the stored raw file',
+        madeBy: validator,
+        madeAt: '2026-11-25T12:00:00.000Z',
+        sha256: hash('e3'),
+      },
+      {
+        number: 'E-4',
+        title: 'Stability over 200 resamples',
+        madeBy: validator,
+        madeAt: '2026-11-25T13:00:00.000Z',
+        sha256: hash('e4'),
+      },
     ],
     specification,
     result,
@@ -271,13 +352,47 @@ export function inventedInput(count = 12): DocumentInput {
       characteristics: result.characteristics.map(({ column, bins }, place) => ({
         column,
         trend: place % 2 === 0 ? 'rising' : 'any',
-        holdOut: bins.map((bin) => ({ rows: Math.round(bin.rows * 0.43), goods: Math.round(bin.goods * 0.43), bads: Math.round(bin.bads * 0.41) })),
-        outOfTime: bins.map((bin) => ({ rows: Math.round(bin.rows * 0.27), goods: Math.round(bin.goods * 0.26), bads: Math.round(bin.bads * 0.34) })),
-        edits: place === 0 ? [{ at: '2026-11-12T14:00:00.000Z', by: modeller, edit: 'moved the cut at 30 to 32', reason: 'Limits of cards are reported in steps; 32 lies between two of them.' }] : [],
+        holdOut: bins.map((bin) => ({
+          rows: Math.round(bin.rows * 0.43),
+          goods: Math.round(bin.goods * 0.43),
+          bads: Math.round(bin.bads * 0.41),
+        })),
+        outOfTime: bins.map((bin) => ({
+          rows: Math.round(bin.rows * 0.27),
+          goods: Math.round(bin.goods * 0.26),
+          bads: Math.round(bin.bads * 0.34),
+        })),
+        edits:
+          place === 0
+            ? [
+                {
+                  at: '2026-11-12T14:00:00.000Z',
+                  by: modeller,
+                  edit: 'moved the cut at 30 to 32',
+                  reason: 'Limits of cards are reported in steps; 32 lies between two of them.',
+                },
+              ]
+            : [],
       })),
     },
-    outOfTime: { covered: false, openings: [{ at: '2026-11-19T17:00:00.000Z', by: modeller, reason: 'Last look before freezing', beforeFreezing: true, sequence: 205 }] },
-    penaltyChoice: { by: modeller, at: '2026-11-19T15:30:00.000Z', rule: 'one-standard-error rule', reason: 'Fewer characteristics at a deviance inside one standard error of the smallest.' },
+    outOfTime: {
+      covered: false,
+      openings: [
+        {
+          at: '2026-11-19T17:00:00.000Z',
+          by: modeller,
+          reason: 'Last look before freezing',
+          beforeFreezing: true,
+          sequence: 205,
+        },
+      ],
+    },
+    penaltyChoice: {
+      by: modeller,
+      at: '2026-11-19T15:30:00.000Z',
+      rule: 'one-standard-error rule',
+      reason: 'Fewer characteristics at a deviance inside one standard error of the smallest.',
+    },
     stability: {
       evidence: 'E-4',
       scheme: 'bootstrap of goods and bads apart',
@@ -302,11 +417,31 @@ export function inventedInput(count = 12): DocumentInput {
     bandCalibrations: (['development', 'holdOut', 'outOfTime'] as const).map((partition) => ({
       evidence: 'E-2',
       partition,
-      bands: result.bands.map((band, place) => ({ rows: band[partition].rows, bads: band[partition].bads, meanPd: 0.3 * Math.exp(-0.325 * place) })),
+      bands: result.bands.map((band, place) => ({
+        rows: band[partition].rows,
+        bads: band[partition].bads,
+        meanPd: 0.3 * Math.exp(-0.325 * place),
+      })),
     })),
     comparisons: [
-      { evidence: 'E-2', against: 'Incumbent score', partition: 'holdOut', auc: 0.652, difference: 0.1218, interval: { lower: 0.098, upper: 0.1456 }, pValue: 1e-12 },
-      { evidence: 'E-2', against: 'Unpenalised fit', partition: 'holdOut', auc: 0.7731, difference: 0.0007, interval: { lower: -0.0021, upper: 0.0035 }, pValue: 0.624 },
+      {
+        evidence: 'E-2',
+        against: 'Incumbent score',
+        partition: 'holdOut',
+        auc: 0.652,
+        difference: 0.1218,
+        interval: { lower: 0.098, upper: 0.1456 },
+        pValue: 1e-12,
+      },
+      {
+        evidence: 'E-2',
+        against: 'Unpenalised fit',
+        partition: 'holdOut',
+        auc: 0.7731,
+        difference: 0.0007,
+        interval: { lower: -0.0021, upper: 0.0035 },
+        pValue: 0.624,
+      },
     ],
     replications: [
       {
@@ -335,13 +470,33 @@ export function inventedInput(count = 12): DocumentInput {
       conclusion: 'fit with conditions',
       concludedAt: '2026-11-26T16:40:00.000Z',
       findings: [
-        { number: 'F-1', description: 'Months since arrears drifts in the last half-year.', severity: 'medium', owner: modeller, due: '2027-03-31', state: 'open', evidence: 'E-4' },
+        {
+          number: 'F-1',
+          description: 'Months since arrears drifts in the last half-year.',
+          severity: 'medium',
+          owner: modeller,
+          due: '2027-03-31',
+          state: 'open',
+          evidence: 'E-4',
+        },
       ],
     },
     history: [
-      { sequence: 205, at: '2026-11-19T17:00:00.000Z', by: modeller, act: 'opened the out-of-time figures', reason: 'Last look before freezing' },
+      {
+        sequence: 205,
+        at: '2026-11-19T17:00:00.000Z',
+        by: modeller,
+        act: 'opened the out-of-time figures',
+        reason: 'Last look before freezing',
+      },
       { sequence: 212, at: '2026-11-20T10:15:00.000Z', by: modeller, act: 'froze version 1', reason: null },
-      { sequence: 240, at: '2026-11-26T16:40:00.000Z', by: validator, act: 'concluded: fit with conditions', reason: 'See opinion' },
+      {
+        sequence: 240,
+        at: '2026-11-26T16:40:00.000Z',
+        by: validator,
+        act: 'concluded: fit with conditions',
+        reason: 'See opinion',
+      },
     ],
     recordHead: { sequence: 251, hash: hash('record') },
   };
