@@ -20,6 +20,7 @@ export class Ask {
     const reference = this.injector
       .get(MatDialog)
       .open<InstanceType<typeof AskDialog>, Question, Answer>(AskDialog, { data: question, width: '520px' });
-    return (await firstValueFrom(reference.afterClosed())) ?? null;
+    // Closing by its button gives an empty string, by Escape undefined.
+    return (await firstValueFrom(reference.afterClosed())) || null;
   }
 }

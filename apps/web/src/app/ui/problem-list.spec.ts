@@ -1,0 +1,36 @@
+import { TestBed } from '@angular/core/testing';
+import { Problem } from '../core/http/problem';
+import { ProblemList } from './problem-list';
+
+describe('ProblemList', () => {
+  it('takes no room while nothing is wrong', async () => {
+    const fixture = TestBed.createComponent(ProblemList);
+    await fixture.whenStable();
+    expect((fixture.nativeElement as HTMLElement).querySelector('*')).toBeNull();
+  });
+
+  it('says what, where and what next, every problem at once', async () => {
+    const fixture = TestBed.createComponent(ProblemList);
+    const problem = new Problem(
+      422,
+      'invalid',
+      'The file has problems',
+      'Nothing was stored.',
+      [
+        { code: 'ragged', message: '7 fields instead of 9', where: { line: 812, column: 'income' } },
+        { code: 'blank-header', message: 'The header is blank', where: { column: 3 } },
+      ],
+      'r-9',
+    );
+    fixture.componentRef.setInput('error', problem);
+    fixture.componentRef.setInput('next', 'Correct the file and bring it in again.');
+    await fixture.whenStable();
+    const text = (fixture.nativeElement as HTMLElement).textContent?.replace(/\s+/g, ' ');
+    expect(text).toContain('The file has problems');
+    expect(text).toContain('line 812, column income 7 fields instead of 9');
+    expect(text).toContain('column 3 The header is blank');
+    expect(text).toContain('Correct the file');
+    expect(text).toContain('Request r-9');
+    expect((fixture.nativeElement as HTMLElement).querySelector('[role=alert]')).not.toBeNull();
+  });
+});
