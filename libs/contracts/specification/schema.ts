@@ -89,6 +89,21 @@ function acrossSections(given: Partial<Specification>): Finding[] {
       });
     }
   }
+  if (characteristics !== undefined && given.data !== undefined) {
+    const missing = new Set(given.data.missing);
+    characteristics.forEach((entry, index) => {
+      if (entry.coding === 'linear') return;
+      const groups = entry.kind === 'categorical' ? entry.groups.flat() : [];
+      for (const text of [...groups, ...entry.special.flatMap((special) => special.values.map(String))]) {
+        if (!missing.has(text)) continue;
+        findings.push({
+          path: ['characteristics', index],
+          code: 'listed-as-missing',
+          message: `${JSON.stringify(text)} is listed for "${entry.column}" and as missing (data.missing): it can be one only.`,
+        });
+      }
+    });
+  }
   if (reasons?.baseline === 'cut-off' && cutOff === null) {
     findings.push({ path: ['reasons', 'baseline'], code: 'needs-cut-off', message: 'The baseline "cut-off" needs a cut-off.' });
   }

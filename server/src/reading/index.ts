@@ -9,6 +9,7 @@
  * Nothing is repaired. Every problem of a file comes at once with its line, record and column; a file with any problem gives no data.
  */
 export { readColumns, type ColumnOptions } from './columns';
+export { readForReplay, sourceOfFile } from './file-source';
 export { readSegments, type SegmentedFile } from './segments';
 export { sniff, type Sniffed } from './sniff';
 export {

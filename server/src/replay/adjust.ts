@@ -36,11 +36,20 @@ export function adjusted({ spec, prepared, coded, terms, tables, fit, badRateOfF
     const spread = eta.some((value) => value !== eta[0]);
     const found = calibration(probabilitiesOfBad(eta), rows.outcome, rows.weights ?? undefined);
     if (spread && !found.converged) {
-      refuse([{ code: 'separation', message: 'The hold-out is separated by the score, so recalibration has no finite slope.', where: {} }]);
+      refuse([
+        {
+          code: 'separation',
+          message: 'The hold-out is separated by the score, so recalibration has no finite slope.',
+          where: {},
+        },
+      ]);
     }
     const slope = spread ? found.slope : 1;
     const shift = spread ? found.intercept : found.inTheLarge;
-    model = { intercept: slope * model.intercept - shift, coefficients: model.coefficients.map((coefficient) => slope * coefficient) };
+    model = {
+      intercept: slope * model.intercept - shift,
+      coefficients: model.coefficients.map((coefficient) => slope * coefficient),
+    };
     sampleBadRate = badRate(rows);
   }
   if (spec.priorCorrection !== null) {

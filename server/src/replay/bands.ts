@@ -50,7 +50,13 @@ export function scoreStability(bands: readonly ResultBand[], name: PartitionName
  * CSI of one characteristic over its bins, rows counted. Rows in no bin (unseen categories) are one class more as soon as there is one
  * on either side: a shift into values never seen is a shift.
  */
-export function characteristicStability(codes: Uint8Array, bins: number, evaluator: Evaluator, name: PartitionName, smoothing: number): number | null {
+export function characteristicStability(
+  codes: Uint8Array,
+  bins: number,
+  evaluator: Evaluator,
+  name: PartitionName,
+  smoothing: number,
+): number | null {
   const count = (rows: Uint32Array): Float64Array => {
     const counts = new Float64Array(bins + 1);
     for (const row of rows) counts[codes[row] === NO_BIN ? bins : codes[row]]++;

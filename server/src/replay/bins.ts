@@ -22,7 +22,9 @@ export function cutLabels(edges: readonly number[], closed: 'left' | 'right'): s
   if (edges.length === 0) return ['all values'];
   const left = closed === 'left';
   const first = left ? `under ${edges[0]}` : `up to ${edges[0]}`;
-  const middle = edges.slice(1).map((edge, index) => (left ? `${edges[index]} to under ${edge}` : `over ${edges[index]} to ${edge}`));
+  const middle = edges
+    .slice(1)
+    .map((edge, index) => (left ? `${edges[index]} to under ${edge}` : `over ${edges[index]} to ${edge}`));
   const last = edges[edges.length - 1];
   return [first, ...middle, left ? `${last} and over` : `over ${last}`];
 }

@@ -1,5 +1,11 @@
 import { binOf } from '@tallystone/numeric';
-import type { CategoricalCharacteristic, Characteristic, LinearCharacteristic, NumericCharacteristic, Specification } from '@tallystone/contracts/specification/types';
+import type {
+  CategoricalCharacteristic,
+  Characteristic,
+  LinearCharacteristic,
+  NumericCharacteristic,
+  Specification,
+} from '@tallystone/contracts/specification/types';
 import { binsOf, joins } from './bins';
 import { Columns } from './columns';
 import { refuse, ValueCounts, type ReplayProblem } from './problems';
@@ -21,12 +27,19 @@ export function codeCharacteristics(
 ): CodeMatrix {
   const columns = new Columns(source, spec.data);
   const problems: ReplayProblem[] = [];
-  const characteristics = spec.characteristics.map((characteristic) => code(characteristic, columns, prepared.partition, problems));
+  const characteristics = spec.characteristics.map((characteristic) =>
+    code(characteristic, columns, prepared.partition, problems),
+  );
   refuse([...columns.problems, ...problems]);
   return { rows: prepared.rows, characteristics };
 }
 
-function code(characteristic: Characteristic, columns: Columns, partition: Uint8Array, problems: ReplayProblem[]): CodedCharacteristic {
+function code(
+  characteristic: Characteristic,
+  columns: Columns,
+  partition: Uint8Array,
+  problems: ReplayProblem[],
+): CodedCharacteristic {
   if (characteristic.coding === 'linear') return codeLinear(characteristic, columns, partition, problems);
   return characteristic.kind === 'numeric'
     ? codeNumeric(characteristic, columns, partition, problems)
@@ -53,7 +66,8 @@ class Faults {
     const problem = this.values.problem(
       'not-a-number',
       column,
-      (listed, rows) => `"${column}" has ${rows} value${rows === 1 ? ' that is no number' : 's that are no numbers'}, neither missing nor special: ${listed}.`,
+      (listed, rows) =>
+        `"${column}" has ${rows} value${rows === 1 ? ' that is no number' : 's that are no numbers'}, neither missing nor special: ${listed}.`,
     );
     if (problem !== null) problems.push(problem);
     if (this.missing > 0) {
@@ -73,8 +87,13 @@ function codeNumeric(
   const codes = new Uint8Array(columns.rows).fill(NO_BIN);
   const faults = new Faults(characteristic.column);
   const { special, missing } = joins(characteristic);
-  const specialBin = new Map(characteristic.special.flatMap((entry, index) => entry.values.map((value) => [value === 0 ? 0 : value, special[index]] as const)));
-  const binOfValue = (value: number): number => specialBin.get(value) ?? binOf(value, characteristic.edges, characteristic.closed);
+  const specialBin = new Map(
+    characteristic.special.flatMap((entry, index) =>
+      entry.values.map((value) => [value === 0 ? 0 : value, special[index]] as const),
+    ),
+  );
+  const binOfValue = (value: number): number =>
+    specialBin.get(value) ?? binOf(value, characteristic.edges, characteristic.closed);
   const column = columns.raw(characteristic.column);
   const view = columns.numbers(characteristic.column);
   if (column !== null && view !== null) {
@@ -124,7 +143,9 @@ function codeCategorical(
     ]);
     const unseen = characteristic.unseen === 'neutral' ? NO_BIN : characteristic.unseen;
     const refused = Uint8Array.from(column.texts, (text) => (columns.isMissing(text) && missing === null ? 1 : 0));
-    const byText = Uint8Array.from(column.texts, (text) => (columns.isMissing(text) ? (missing ?? NO_BIN) : (listed.get(text) ?? unseen)));
+    const byText = Uint8Array.from(column.texts, (text) =>
+      columns.isMissing(text) ? (missing ?? NO_BIN) : (listed.get(text) ?? unseen),
+    );
     for (let row = 0; row < codes.length; row++) {
       if (partition[row] === OUT) continue;
       const text = column.codes[row];

@@ -71,7 +71,9 @@ export class Columns {
     }
     const { values, exceptions } = column;
     // Missing texts that are numbers are compared as numbers here, as the spelling is not kept.
-    const missingNumbers = new Set([...this.missingTexts].map((text) => this.reader.read(text)).filter((value) => !Number.isNaN(value)));
+    const missingNumbers = new Set(
+      [...this.missingTexts].map((text) => this.reader.read(text)).filter((value) => !Number.isNaN(value)),
+    );
     const textAt = (row: number): string => (Number.isNaN(values[row]) ? (exceptions?.get(row) ?? '') : String(values[row]));
     const missingAt = (row: number): boolean =>
       Number.isNaN(values[row]) ? this.missingTexts.has(exceptions?.get(row) ?? '') : missingNumbers.has(values[row]);

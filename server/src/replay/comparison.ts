@@ -48,15 +48,22 @@ export function describeDifference({ path, expected, actual, difference }: Diffe
 function compare(expected: unknown, actual: unknown, path: string, options: ComparisonOptions, differences: Difference[]): void {
   if (options.ignore?.some((start) => path === start || path.startsWith(`${start}.`)) === true) return;
   if (typeof expected === 'number' && typeof actual === 'number') {
-    if (!matches(expected, actual, options.tolerance)) differences.push({ path, expected, actual, difference: Math.abs(expected - actual) });
+    if (!matches(expected, actual, options.tolerance))
+      differences.push({ path, expected, actual, difference: Math.abs(expected - actual) });
     return;
   }
   if (Array.isArray(expected) && Array.isArray(actual)) {
     if (expected.length !== actual.length) {
-      differences.push({ path: `${path}.length`, expected: expected.length, actual: actual.length, difference: Math.abs(expected.length - actual.length) });
+      differences.push({
+        path: `${path}.length`,
+        expected: expected.length,
+        actual: actual.length,
+        difference: Math.abs(expected.length - actual.length),
+      });
     }
     const length = Math.min(expected.length, actual.length);
-    for (let index = 0; index < length; index++) compare(expected[index], actual[index], `${path}[${index}]`, options, differences);
+    for (let index = 0; index < length; index++)
+      compare(expected[index], actual[index], `${path}[${index}]`, options, differences);
     return;
   }
   if (isRecord(expected) && isRecord(actual)) {

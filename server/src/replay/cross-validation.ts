@@ -1,4 +1,13 @@
-import { crossValidate, deviance, fitPath, linearPredictor, summarise, type CrossValidation, type FitProblem, type FoldResult } from '@tallystone/numeric';
+import {
+  crossValidate,
+  deviance,
+  fitPath,
+  linearPredictor,
+  summarise,
+  type CrossValidation,
+  type FitProblem,
+  type FoldResult,
+} from '@tallystone/numeric';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import { byCode, penaltyOf } from './design';
 import type { FitRows } from './fit-rows';
@@ -32,10 +41,18 @@ export function crossValidated(input: CrossValidationInput): { result: CrossVali
   const folds = fitRows.folds ?? new Uint8Array(fitRows.rows.length);
   const classing = spec.fit.folds?.classing ?? 'once';
   const classed = classing === 'once' ? null : foldClassing(spec, coded, fitRows, source);
-  const newBins = classing === 'cuts' && coded.characteristics.some(({ characteristic }) => characteristic.coding === 'indicator');
+  const newBins =
+    classing === 'cuts' && coded.characteristics.some(({ characteristic }) => characteristic.coding === 'indicator');
   if (fitRows.known === fitRows.rows.length && !newBins) {
-    const columnsForFold = classed === null ? undefined : (fold: number, training: Uint8Array) => columnsOf(terms, classed.classed(fold, training), problem);
-    const options = { tolerance: FOLD_TOLERANCE, onFold: input.onFold, ...(columnsForFold === undefined ? {} : { columnsForFold }) };
+    const columnsForFold =
+      classed === null
+        ? undefined
+        : (fold: number, training: Uint8Array) => columnsOf(terms, classed.classed(fold, training), problem);
+    const options = {
+      tolerance: FOLD_TOLERANCE,
+      onFold: input.onFold,
+      ...(columnsForFold === undefined ? {} : { columnsForFold }),
+    };
     return { result: crossValidate(problem, folds, lambdas, options), heldByHand: classed?.heldByHand ?? 0 };
   }
   return { result: foldByFold(input, folds, classed), heldByHand: classed?.heldByHand ?? 0 };
@@ -78,7 +95,10 @@ function foldByFold(input: CrossValidationInput, folds: Uint8Array, classed: Fol
       fold,
       weight,
       deviance: fits.map((fit) => {
-        const eta = heldColumns.length === 0 ? new Float64Array(outside.length).fill(fit.intercept) : linearPredictor(heldColumns, fit.intercept, fit.coefficients);
+        const eta =
+          heldColumns.length === 0
+            ? new Float64Array(outside.length).fill(fit.intercept)
+            : linearPredictor(heldColumns, fit.intercept, fit.coefficients);
         return deviance(heldOutcome, eta, heldWeights) / weight;
       }),
     });
@@ -94,7 +114,9 @@ function foldTermsOf(terms: readonly Term[], bins: readonly FoldBins[], coded: C
     if (characteristic.coding !== 'indicator') return own;
     const rows = bins[index].table?.rows ?? new Float64Array(0);
     const reference = own.length < all.length ? rows.findIndex((value) => value > 0) : -1;
-    return Array.from(rows, (_, bin) => ({ characteristic: index, kind: 'bin' as const, bin })).filter((term) => term.bin !== reference);
+    return Array.from(rows, (_, bin) => ({ characteristic: index, kind: 'bin' as const, bin })).filter(
+      (term) => term.bin !== reference,
+    );
   });
 }
 

@@ -39,7 +39,10 @@ export function withDeclined(spec: Specification, prepared: Prepared, coded: Cod
   if (method === 'reweighting') return reweighted(spec, prepared, coded, accepted, declined);
   const goodBad = auxiliary(spec, coded, accepted, accepted);
   const eta = (rows: Uint32Array): Float64Array => etaOf(goodBad, coded, rows);
-  const pd = method === 'fuzzy' ? eta(declined).map((value) => 1 / (1 + Math.exp(value))) : parcelled(spec.declined, accepted, eta(accepted.rows), eta(declined));
+  const pd =
+    method === 'fuzzy'
+      ? eta(declined).map((value) => 1 / (1 + Math.exp(value)))
+      : parcelled(spec.declined, accepted, eta(accepted.rows), eta(declined));
   return twice(prepared, accepted, declined, pd);
 }
 
@@ -62,7 +65,13 @@ function auxiliary(spec: Specification, coded: CodeMatrix, coding: FitRows, targ
   return modelTables(fit, terms, plain, tables);
 }
 
-function reweighted(spec: Specification, prepared: Prepared, coded: CodeMatrix, accepted: FitRows, declined: Uint32Array): FitRows {
+function reweighted(
+  spec: Specification,
+  prepared: Prepared,
+  coded: CodeMatrix,
+  accepted: FitRows,
+  declined: Uint32Array,
+): FitRows {
   const rows = Uint32Array.from([...accepted.rows, ...declined]);
   const decision: FitRows = {
     rows,
@@ -78,9 +87,16 @@ function reweighted(spec: Specification, prepared: Prepared, coded: CodeMatrix, 
   return { ...accepted, weights };
 }
 
-function parcelled(settings: NonNullable<Specification['declined']>, accepted: FitRows, etaAccepted: Float64Array, etaDeclined: Float64Array): Float64Array {
+function parcelled(
+  settings: NonNullable<Specification['declined']>,
+  accepted: FitRows,
+  etaAccepted: Float64Array,
+  etaDeclined: Float64Array,
+): Float64Array {
   const edges = [
-    ...new Set(Array.from({ length: settings.bands - 1 }, (_, index) => quantileType7(etaAccepted, (index + 1) / settings.bands))),
+    ...new Set(
+      Array.from({ length: settings.bands - 1 }, (_, index) => quantileType7(etaAccepted, (index + 1) / settings.bands)),
+    ),
   ];
   const bandOf = (eta: number): number => edges.filter((edge) => eta >= edge).length;
   const bads = new Float64Array(edges.length + 1);

@@ -11,7 +11,12 @@ import type { WoeTable } from './woe';
  * (penalised: all bins; unpenalised: the first bin with rows is the reference and has none).
  * @param wanted characteristics to take; default all
  */
-export function termsOf(coded: CodeMatrix, tables: readonly (WoeTable | null)[], unpenalised: boolean, wanted?: ReadonlySet<number>): Term[] {
+export function termsOf(
+  coded: CodeMatrix,
+  tables: readonly (WoeTable | null)[],
+  unpenalised: boolean,
+  wanted?: ReadonlySet<number>,
+): Term[] {
   const terms: Term[] = [];
   coded.characteristics.forEach(({ characteristic, bins }, index) => {
     if (wanted !== undefined && !wanted.has(index)) return;
@@ -35,7 +40,12 @@ export function isUnpenalised(spec: Specification): boolean {
 }
 
 /** One column per term, over the entries of `fitRows`. */
-export function designColumns(terms: readonly Term[], coded: CodeMatrix, tables: readonly (WoeTable | null)[], fitRows: FitRows): Float64Array[] {
+export function designColumns(
+  terms: readonly Term[],
+  coded: CodeMatrix,
+  tables: readonly (WoeTable | null)[],
+  fitRows: FitRows,
+): Float64Array[] {
   return terms.map((term) => {
     const { codes, values } = coded.characteristics[term.characteristic];
     const column = new Float64Array(fitRows.rows.length);
@@ -95,7 +105,12 @@ export interface ModelTables {
   kept: boolean[];
 }
 
-export function modelTables(model: Model, terms: readonly Term[], coded: CodeMatrix, tables: readonly (WoeTable | null)[]): ModelTables {
+export function modelTables(
+  model: Model,
+  terms: readonly Term[],
+  coded: CodeMatrix,
+  tables: readonly (WoeTable | null)[],
+): ModelTables {
   const contributions = coded.characteristics.map(({ codes }) => (codes === null ? null : new Float64Array(256)));
   const slopes = new Float64Array(coded.characteristics.length);
   const kept = coded.characteristics.map(() => false);

@@ -53,7 +53,12 @@ export function evaluatorOf(
       weights: prepared.weights === null ? null : gatherNumbers(prepared.weights, rows),
     };
   };
-  return { spec, coded, woe, partitions: { development: rowsOf(DEVELOPMENT), holdOut: rowsOf(HOLD_OUT), outOfTime: rowsOf(OUT_OF_TIME) } };
+  return {
+    spec,
+    coded,
+    woe,
+    partitions: { development: rowsOf(DEVELOPMENT), holdOut: rowsOf(HOLD_OUT), outOfTime: rowsOf(OUT_OF_TIME) },
+  };
 }
 
 /**

@@ -71,14 +71,19 @@ function limitTest(rule: ColumnTest, columns: Columns, problems: ReplayProblem[]
   } else {
     const view = columns.numbers(rule.column);
     if (view === null) return () => false;
-    for (let row = 0; row < columns.rows; row++) if (Number.isNaN(view.number(row)) && !view.missing(row)) faults.add(view.text(row));
+    for (let row = 0; row < columns.rows; row++)
+      if (Number.isNaN(view.number(row)) && !view.missing(row)) faults.add(view.text(row));
     test = (row) => {
       const value = view.number(row);
       return !Number.isNaN(value) && within(value);
     };
   }
   const what = typeof stated[0] === 'string' ? 'an ISO date' : 'a number';
-  const problem = faults.problem('not-comparable', rule.column, (listed) => `"${rule.column}" has values that are not ${what}: ${listed}.`);
+  const problem = faults.problem(
+    'not-comparable',
+    rule.column,
+    (listed) => `"${rule.column}" has values that are not ${what}: ${listed}.`,
+  );
   if (problem !== null) problems.push(problem);
   return test;
 }

@@ -10,6 +10,12 @@ import type { ColumnSource } from './source';
 import { DEVELOPMENT, OUT, type CodeMatrix, type Model, type Prepared, type Term } from './types';
 import { woeTables, type WoeTable } from './woe';
 
+/**
+ * Largest optimality residual asked of path points and reported fits. Ten times tighter than the 1e-9 a reported fit must reach: the
+ * coefficients of flat directions then agree to 1e-8 with other solvers.
+ */
+const TOLERANCE = 1e-10;
+
 export type Method = 'standard' | 'independent';
 
 export interface FitRequest {
@@ -70,12 +76,25 @@ export function trainPaths(request: FitRequest): TrainedPath[] {
     const mixings = Array.isArray(spec.fit.mixing) ? spec.fit.mixing : [spec.fit.mixing];
     return mixings.map((mixing): TrainedPath => {
       const problem = problemOf(columns, fitRows, penaltyOf(spec, coded, terms, mixing));
-      const path = fitPath(problem, gridOf(spec), { onFit: (_, index, count) => request.onFit?.(index + 1, count) });
+      const path = fitPath(problem, gridOf(spec), {
+        tolerance: TOLERANCE,
+        onFit: (_, index, count) => request.onFit?.(index + 1, count),
+      });
       const lambdas = path.fits.map((fit) => fit.lambda);
       const validated =
         spec.fit.folds === null
           ? null
-          : crossValidated({ spec, coded, fitRows, source: request.source ?? null, terms, problem, lambdas, mixing, onFold: request.onFold });
+          : crossValidated({
+              spec,
+              coded,
+              fitRows,
+              source: request.source ?? null,
+              terms,
+              problem,
+              lambdas,
+              mixing,
+              onFold: request.onFold,
+            });
       return {
         mixing,
         terms,
@@ -104,7 +123,11 @@ export function choosePenalty(spec: Specification, paths: readonly TrainedPath[]
   const candidates = paths.map((path) => {
     const validated = path.crossValidation;
     const index =
-      rule === 'value' || validated === null ? path.fits.length - 1 : rule === 'minimum' ? validated.minimum : validated.oneStandardError;
+      rule === 'value' || validated === null
+        ? path.fits.length - 1
+        : rule === 'minimum'
+          ? validated.minimum
+          : validated.oneStandardError;
     return { path, index, deviance: validated?.mean[index] ?? 0 };
   });
   return candidates.reduce((best, other) => (other.deviance < best.deviance ? other : best));
@@ -119,15 +142,19 @@ export function finishFit(request: FitRequest, trained: TrainedPath, index: numb
     const { specification: spec, prepared, coded } = request;
     const { lambda } = trained.fits[index];
     const independent = request.method === 'independent';
-    const solve = (problem: FitProblem, at: number): Fit => (independent ? fitIndependently(problem, at) : fitAt(problem, at));
-    let fit = independent ? fitIndependently(trained.problem, lambda) : trained.fits[index];
+    const solve = (problem: FitProblem, at: number): Fit =>
+      independent ? fitIndependently(problem, at, { tolerance: TOLERANCE }) : fitAt(problem, at, { tolerance: TOLERANCE });
+    let fit = independent ? solve(trained.problem, lambda) : trained.fits[index];
     let { terms } = trained;
     let rows = trained.fitRows;
     let kept = keptOf(fit, terms, coded);
     if (spec.fit.refit === 'kept') {
       const wanted = new Set(kept.flatMap((one, place) => (one ? [place] : [])));
       terms = termsOf(coded, trained.tables, true, wanted);
-      fit = solve(problemOf(designColumns(terms, coded, trained.tables, rows), rows, penaltyOf(spec, coded, terms, trained.mixing)), 0);
+      fit = solve(
+        problemOf(designColumns(terms, coded, trained.tables, rows), rows, penaltyOf(spec, coded, terms, trained.mixing)),
+        0,
+      );
       kept = keptOf(fit, terms, coded);
     } else if (spec.fit.refit === 'all-rows') {
       rows = withOtherPartitions(prepared, trained.fitRows);
@@ -165,7 +192,10 @@ function withOtherPartitions(prepared: Prepared, development: FitRows): FitRows 
     rows: Uint32Array.from([...development.rows, ...others.rows]),
     outcome: Uint8Array.from([...development.outcome, ...others.outcome]),
     weights: weighted
-      ? Float64Array.from([...(development.weights ?? ones(development.rows.length)), ...(others.weights ?? ones(others.rows.length))])
+      ? Float64Array.from([
+          ...(development.weights ?? ones(development.rows.length)),
+          ...(others.weights ?? ones(others.rows.length)),
+        ])
       : null,
     folds: null,
     known: development.known,

@@ -27,7 +27,12 @@ export interface FoldBins {
   table: WoeTable | null;
 }
 
-export function foldClassing(spec: Specification, coded: CodeMatrix, fitRows: FitRows, source: ColumnSource | null): FoldClassing {
+export function foldClassing(
+  spec: Specification,
+  coded: CodeMatrix,
+  fitRows: FitRows,
+  source: ColumnSource | null,
+): FoldClassing {
   const cuts = spec.fit.folds?.classing === 'cuts';
   const columns = source === null ? null : new Columns(source, spec.data);
   const problems: ReplayProblem[] = [];
@@ -36,14 +41,22 @@ export function foldClassing(spec: Specification, coded: CodeMatrix, fitRows: Fi
     const held = codes[index];
     if (!cuts || held === null || characteristic.coding === 'linear' || isHeld(characteristic)) return null;
     if (columns === null) {
-      problems.push({ code: 'needs-source', message: 'Classing cuts in every fold needs the sample itself.', where: { column: characteristic.column } });
+      problems.push({
+        code: 'needs-source',
+        message: 'Classing cuts in every fold needs the sample itself.',
+        where: { column: characteristic.column },
+      });
       return null;
     }
-    return characteristic.kind === 'numeric' ? numericRecoder(characteristic, columns, held, fitRows) : categoricalRecoder(characteristic, columns, held, fitRows);
+    return characteristic.kind === 'numeric'
+      ? numericRecoder(characteristic, columns, held, fitRows)
+      : categoricalRecoder(characteristic, columns, held, fitRows);
   });
   refuse(problems);
   return {
-    heldByHand: cuts ? coded.characteristics.filter(({ characteristic }) => characteristic.coding !== 'linear' && isHeld(characteristic)).length : 0,
+    heldByHand: cuts
+      ? coded.characteristics.filter(({ characteristic }) => characteristic.coding !== 'linear' && isHeld(characteristic)).length
+      : 0,
     classed(fold, training) {
       const faults: ReplayProblem[] = [];
       const classed = coded.characteristics.map(({ characteristic, bins }, index): FoldBins => {
@@ -71,28 +84,47 @@ export function isHeld(characteristic: BinnedCharacteristic): boolean {
 type Recoder = (training: Uint8Array) => { codes: Uint8Array; labels: string[] };
 
 /** Own bins (special, missing) keep their order behind the new regular bins. */
-function ownBins(characteristic: Characteristic & BinnedCharacteristic, held: Uint8Array): { isOwn: (index: number) => boolean; regular: number; labels: string[] } {
+function ownBins(
+  characteristic: Characteristic & BinnedCharacteristic,
+  held: Uint8Array,
+): { isOwn: (index: number) => boolean; regular: number; labels: string[] } {
   const regular = regularBins(characteristic);
   const labels = characteristic.special.map((entry) => entry.label);
   if (characteristic.missing === 'own') labels.push('missing');
   return { isOwn: (index) => held[index] !== NO_BIN && held[index] >= regular, regular, labels };
 }
 
-function numericRecoder(characteristic: BinnedCharacteristic & { kind: 'numeric' }, columns: Columns, held: Uint8Array, fitRows: FitRows): Recoder {
+function numericRecoder(
+  characteristic: BinnedCharacteristic & { kind: 'numeric' },
+  columns: Columns,
+  held: Uint8Array,
+  fitRows: FitRows,
+): Recoder {
   const view = columns.numbers(characteristic.column);
   const own = ownBins(characteristic, held);
   const values = new Float64Array(held.length);
-  for (let index = 0; index < values.length; index++) values[index] = own.isOwn(index) || view === null ? NaN : view.number(fitRows.rows[index]);
+  for (let index = 0; index < values.length; index++)
+    values[index] = own.isOwn(index) || view === null ? NaN : view.number(fitRows.rows[index]);
   const { classing, closed } = characteristic;
   return (training) => {
-    const edges = classing.made === 'automatic' ? automaticEdges(values, fitRows.outcome, fitRows.weights, classing, closed, training) : characteristic.edges;
+    const edges =
+      classing.made === 'automatic'
+        ? automaticEdges(values, fitRows.outcome, fitRows.weights, classing, closed, training)
+        : characteristic.edges;
     const shift = edges.length + 1 - own.regular;
-    const codes = held.map((code, index) => (own.isOwn(index) ? code + shift : code === NO_BIN ? NO_BIN : binOf(values[index], edges, closed)));
+    const codes = held.map((code, index) =>
+      own.isOwn(index) ? code + shift : code === NO_BIN ? NO_BIN : binOf(values[index], edges, closed),
+    );
     return { codes, labels: [...cutLabels(edges, closed), ...own.labels] };
   };
 }
 
-function categoricalRecoder(characteristic: BinnedCharacteristic & { kind: 'categorical' }, columns: Columns, held: Uint8Array, fitRows: FitRows): Recoder {
+function categoricalRecoder(
+  characteristic: BinnedCharacteristic & { kind: 'categorical' },
+  columns: Columns,
+  held: Uint8Array,
+  fitRows: FitRows,
+): Recoder {
   const column = columns.text(characteristic.column);
   const own = ownBins(characteristic, held);
   const texts = column?.texts ?? [];

@@ -27,7 +27,8 @@ export function assignFolds(
     if (outcome[row] === GOOD) goods.push(row);
     else if (outcome[row] === BAD) bads.push(row);
   }
-  if ('column' in folds) return { folds: assigned, count: byColumn(folds.column, columns, [...goods, ...bads], assigned, problems) };
+  if ('column' in folds)
+    return { folds: assigned, count: byColumn(folds.column, columns, [...goods, ...bads], assigned, problems) };
   if (folds.groups !== null) byGroup(folds, folds.groups, columns, [...goods, ...bads], weights, assigned, problems);
   else {
     for (const rows of [goods, bads]) {
@@ -56,7 +57,11 @@ function byGroup(
     if (columns.isMissing(texts[codes[row]])) faults.add(texts[codes[row]]);
     weightOf.set(codes[row], (weightOf.get(codes[row]) ?? 0) + (weights === null ? 1 : weights[row]));
   }
-  const problem = faults.problem('missing-group', name, (listed, count) => `${count} rows have no group in "${name}": ${listed}.`);
+  const problem = faults.problem(
+    'missing-group',
+    name,
+    (listed, count) => `${count} rows have no group in "${name}": ${listed}.`,
+  );
   if (problem !== null) problems.push(problem);
   // Groups are first put in order of their value, so that the order of rows in the file can never matter.
   const groups = [...weightOf.keys()].sort((a, b) => (texts[a] < texts[b] ? -1 : 1));
@@ -77,7 +82,13 @@ function byGroup(
 
 const MOST_FOLDS = 250;
 
-function byColumn(name: string, columns: Columns, rows: readonly number[], assigned: Uint8Array, problems: ReplayProblem[]): number {
+function byColumn(
+  name: string,
+  columns: Columns,
+  rows: readonly number[],
+  assigned: Uint8Array,
+  problems: ReplayProblem[],
+): number {
   const column = columns.text(name);
   if (column === null) return 0;
   const { codes, texts } = column;

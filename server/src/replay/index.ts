@@ -21,9 +21,27 @@ export {
 } from './comparison';
 export { AUXILIARY_LAMBDA } from './declined';
 export { etaOf, modelTables, termsOf, type ModelTables } from './design';
-export { evaluateFit, evaluatorOf, PARTITION_NAMES, type Evaluation, type Evaluator, type PartitionRows, type PartitionScores } from './evaluate';
+export {
+  evaluateFit,
+  evaluatorOf,
+  PARTITION_NAMES,
+  type Evaluation,
+  type Evaluator,
+  type PartitionRows,
+  type PartitionScores,
+} from './evaluate';
 export { canonicalJson, fingerprint } from './fingerprint';
-export { choosePenalty, finishFit, fitCoded, keptOf, trainPaths, type FitRequest, type FittedModel, type Method, type TrainedPath } from './fit';
+export {
+  choosePenalty,
+  finishFit,
+  fitCoded,
+  keptOf,
+  trainPaths,
+  type FitRequest,
+  type FittedModel,
+  type Method,
+  type TrainedPath,
+} from './fit';
 export { fitRowsOf, inDevelopment, knownRows, type FitRows } from './fit-rows';
 export { measure, type MeasuredRows } from './metrics';
 export { pointsOf, roundedScores, type PointsTable } from './points';

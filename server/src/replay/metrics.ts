@@ -1,4 +1,14 @@
-import { auc, brier, calibration, delong, gini, hosmerLemeshow, kolmogorovSmirnov, logLoss, probabilitiesOfBad } from '@tallystone/numeric';
+import {
+  auc,
+  brier,
+  calibration,
+  delong,
+  gini,
+  hosmerLemeshow,
+  kolmogorovSmirnov,
+  logLoss,
+  probabilitiesOfBad,
+} from '@tallystone/numeric';
 import type { ResultMetrics } from '@tallystone/contracts/result/types';
 
 export interface MeasuredRows {
@@ -47,7 +57,12 @@ export function measure(rows: MeasuredRows, figures: 'all' | 'path' = 'all'): Re
     hosmerLemeshow:
       fit === null
         ? null
-        : { statistic: finite(fit.statistic), groups: fit.groups, degreesOfFreedom: fit.degreesOfFreedom, pValue: fit.pValue === null ? null : finite(fit.pValue) },
+        : {
+            statistic: finite(fit.statistic),
+            groups: fit.groups,
+            degreesOfFreedom: fit.degreesOfFreedom,
+            pValue: fit.pValue === null ? null : finite(fit.pValue),
+          },
     calibrationInTheLarge: finite(calibrated.inTheLarge),
     calibrationSlope: usable ? finite(calibrated.slope) : null,
     calibrationIntercept: usable ? finite(calibrated.intercept) : null,

@@ -20,5 +20,7 @@ export function orderByKey(count: number, textOf: (index: number) => string): Ui
     leading[index] = digest.readUIntBE(0, 6);
     order[index] = index;
   }
-  return order.sort((a, b) => leading[a] - leading[b] || digests.compare(digests, b * 32, b * 32 + 32, a * 32, a * 32 + 32) || a - b);
+  return order.sort(
+    (a, b) => leading[a] - leading[b] || digests.compare(digests, b * 32, b * 32 + 32, a * 32, a * 32 + 32) || a - b,
+  );
 }

@@ -17,7 +17,12 @@ export interface Outcomes {
  * Gives every row that is left its outcome, compared as text. A declined row has no outcome, whatever its column says. Rows whose value is
  * listed as excluded are marked in `exclusion` with the number after the last rule. Unlisted and empty values are problems, all at once.
  */
-export function assignOutcome(spec: Specification, columns: Columns, exclusion: Uint16Array, problems: ReplayProblem[]): Outcomes {
+export function assignOutcome(
+  spec: Specification,
+  columns: Columns,
+  exclusion: Uint16Array,
+  problems: ReplayProblem[],
+): Outcomes {
   const { rows } = columns;
   const outcome = new Uint8Array(rows).fill(NO_OUTCOME);
   const saysBad = new Uint8Array(rows);

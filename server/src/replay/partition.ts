@@ -8,7 +8,12 @@ import { BAD, DEVELOPMENT, GOOD, HOLD_OUT, NO_OUTCOME, OUT, OUT_OF_TIME } from '
  * Splits the rows that have an outcome (goods, bads, indeterminates, declined) into development, hold-out and out-of-time.
  * By seed, indeterminate and declined rows that are not out-of-time stay in development: only goods and bads are drawn.
  */
-export function assignPartition(spec: Specification, columns: Columns, outcome: Uint8Array, problems: ReplayProblem[]): Uint8Array {
+export function assignPartition(
+  spec: Specification,
+  columns: Columns,
+  outcome: Uint8Array,
+  problems: ReplayProblem[],
+): Uint8Array {
   const { partition } = spec;
   return 'column' in partition ? byColumn(partition, columns, outcome, problems) : bySeed(partition, columns, outcome, problems);
 }
@@ -67,7 +72,8 @@ function outOfTime(
   const { codes, texts } = column;
   const days = texts.map(isoDay);
   const faults = new ValueCounts();
-  for (let row = 0; row < codes.length; row++) if (outcome[row] !== NO_OUTCOME && days[codes[row]] === null) faults.add(texts[codes[row]]);
+  for (let row = 0; row < codes.length; row++)
+    if (outcome[row] !== NO_OUTCOME && days[codes[row]] === null) faults.add(texts[codes[row]]);
   const problem = faults.problem(
     'not-a-date',
     period.column,
@@ -75,6 +81,8 @@ function outOfTime(
   );
   if (problem !== null) problems.push(problem);
   const { from, to } = period;
-  const within = Uint8Array.from(days, (day) => (day !== null && (from === null || day >= from) && (to === null || day <= to) ? 1 : 0));
+  const within = Uint8Array.from(days, (day) =>
+    day !== null && (from === null || day >= from) && (to === null || day <= to) ? 1 : 0,
+  );
   return (row) => within[codes[row]] === 1;
 }

@@ -47,11 +47,24 @@ export function prepare(definition: SampleDefinition, source: ColumnSource, opti
       problems.push({ code: 'one-class', message, where: { column: spec.outcome.column } });
     }
     if (counts.development.weight === 0 && goods + bads > 0) {
-      problems.push({ code: 'zero-weights', message: 'All weights of development are zero.', where: { column: spec.weight?.column } });
+      problems.push({
+        code: 'zero-weights',
+        message: 'All weights of development are zero.',
+        where: { column: spec.weight?.column },
+      });
     }
     refuse(problems);
   }
-  return { rows: source.rows, partition, outcome, exclusion, weights, folds: folds?.folds ?? null, foldCount: folds?.count ?? 0, counts };
+  return {
+    rows: source.rows,
+    partition,
+    outcome,
+    exclusion,
+    weights,
+    folds: folds?.folds ?? null,
+    foldCount: folds?.count ?? 0,
+    counts,
+  };
 }
 
 function count(

@@ -71,6 +71,7 @@ export function columnsRead(spec: Specification): { all: string[]; numbersOnly: 
     else if (folds.groups !== null) text.add(folds.groups);
   }
   if (spec.weight !== null) numbers.add(spec.weight.column);
-  for (const characteristic of spec.characteristics) (characteristic.kind === 'numeric' ? numbers : text).add(characteristic.column);
+  for (const characteristic of spec.characteristics)
+    (characteristic.kind === 'numeric' ? numbers : text).add(characteristic.column);
   return { all: [...new Set([...text, ...numbers])], numbersOnly: new Set([...numbers].filter((name) => !text.has(name))) };
 }

@@ -7,7 +7,13 @@ import type { FittedModel, Method } from './fit';
 import type { CodeMatrix, Prepared, Term } from './types';
 
 /** The solver's name in a result. Its version is the product's. */
-export const SOLVER_NAMES: Record<Method, string> = { standard: 'coordinate descent', independent: 'accelerated proximal gradient' };
+export const SOLVER_NAMES: Record<Method, string> = {
+  standard: 'coordinate descent',
+  independent: 'accelerated proximal gradient',
+};
+
+/** A fit counts as converged if its optimality residual is at most this (numerics: the chosen fit's). */
+const REPORTED_RESIDUAL = 1e-9;
 
 export interface ResultInput {
   specification: Specification;
@@ -47,7 +53,7 @@ export function buildResult(input: ResultInput): Result {
     objective: fit.objective,
     deviance: fit.deviance,
     optimalityResidual: fit.optimalityResidual,
-    converged: fit.status === 'converged',
+    converged: fit.status !== 'separation' && fit.optimalityResidual <= REPORTED_RESIDUAL,
     basePoints: evaluation.points.basePoints,
     path: trained.fits.map((one) => pathPoint(one, trained.terms, coded)),
     crossValidation:
@@ -84,7 +90,13 @@ function characteristicOf(
   const table = fitted.trained.tables[index];
   if (codes === null || table === null) {
     const coefficient = typeof coefficients === 'number' ? coefficients : 0;
-    return { column: characteristic.column, informationValue: null, coefficient, bins: [], csi: { holdOut: null, outOfTime: null } };
+    return {
+      column: characteristic.column,
+      informationValue: null,
+      coefficient,
+      bins: [],
+      csi: { holdOut: null, outOfTime: null },
+    };
   }
   const points = evaluation.points.points[index];
   const rounded = evaluation.points.pointsRounded[index];
@@ -124,9 +136,18 @@ function coefficientsOf(index: number, coefficients: Float64Array, terms: readon
 
 function pathPoint(fit: Fit, terms: readonly Term[], coded: CodeMatrix): ResultPathPoint {
   const coefficients = Object.fromEntries(
-    coded.characteristics.map(({ characteristic }, index) => [characteristic.column, coefficientsOf(index, fit.coefficients, terms, coded)]),
+    coded.characteristics.map(({ characteristic }, index) => [
+      characteristic.column,
+      coefficientsOf(index, fit.coefficients, terms, coded),
+    ]),
   );
-  return { lambda: fit.lambda, intercept: fit.intercept, coefficients, deviance: fit.deviance, optimalityResidual: fit.optimalityResidual };
+  return {
+    lambda: fit.lambda,
+    intercept: fit.intercept,
+    coefficients,
+    deviance: fit.deviance,
+    optimalityResidual: fit.optimalityResidual,
+  };
 }
 
 /** Minus zero is written as zero. */

@@ -22,8 +22,14 @@ export function readWeights(name: string, columns: Columns, outcome: Uint8Array,
       faults.add(view.text(row));
     }
   }
-  const problem = faults.problem('bad-weight', name, (listed, rows) => `${rows} row${rows === 1 ? ' has a weight that is' : 's have weights that are'} not a number of at least 0: ${listed}.`);
+  const problem = faults.problem(
+    'bad-weight',
+    name,
+    (listed, rows) =>
+      `${rows} row${rows === 1 ? ' has a weight that is' : 's have weights that are'} not a number of at least 0: ${listed}.`,
+  );
   if (problem !== null) problems.push(problem);
-  else if (total === 0) problems.push({ code: 'zero-weights', message: `The weights in "${name}" are all zero.`, where: { column: name } });
+  else if (total === 0)
+    problems.push({ code: 'zero-weights', message: `The weights in "${name}" are all zero.`, where: { column: name } });
   return weights;
 }

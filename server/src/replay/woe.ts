@@ -30,7 +30,16 @@ export function woeTables(
   const problems: ReplayProblem[] = [];
   const tables = coded.characteristics.map((characteristic) => {
     if (characteristic.codes === null) return null;
-    return woeTable(characteristic.characteristic.column, characteristic.bins.map((bin) => bin.label), gatherCodes(characteristic, fitRows), fitRows, settings, training, fold, problems);
+    return woeTable(
+      characteristic.characteristic.column,
+      characteristic.bins.map((bin) => bin.label),
+      gatherCodes(characteristic, fitRows),
+      fitRows,
+      settings,
+      training,
+      fold,
+      problems,
+    );
   });
   refuse(problems);
   return tables;
