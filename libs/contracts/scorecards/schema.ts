@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { scorecardAbilities } from './abilities';
 
 const number = z.number();
 const nullable = z.number().nullable();
@@ -105,7 +106,7 @@ export const Scorecard = z
     rounding: RoundingCost,
     /** Points with a coefficient against WOE, for the justification that submission needs. */
     againstWoe: z.array(z.string()),
-    abilities: z.array(z.enum(['edit', 'freeze'])),
+    abilities: z.array(z.enum(scorecardAbilities)),
   })
   .meta({ id: 'Scorecard' });
 

@@ -7,6 +7,7 @@ import { definePerson } from './person';
 import { defineRecord } from './record';
 import { defineRun } from './run';
 import { defineSample } from './sample';
+import { defineScorecard } from './scorecard';
 
 /** Binds every model to a database; one database per process. An entity adds its own define function here. */
 export function defineModels(sequelize: Sequelize): void {
@@ -18,4 +19,5 @@ export function defineModels(sequelize: Sequelize): void {
   defineSample(sequelize);
   defineBinning(sequelize);
   defineFit(sequelize);
+  defineScorecard(sequelize);
 }

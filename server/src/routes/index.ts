@@ -7,6 +7,7 @@ import { invitationRoutes } from './invitations/index';
 import { peopleRoutes } from './people/index';
 import { recordRoutes } from './record/index';
 import { runRoutes } from './runs/index';
+import { scorecardRoutes } from './scorecards/index';
 import { sessionRoutes } from './session/index';
 import { setUpRoutes } from './set-up/index';
 import { modelRoutes } from './models/index';
@@ -17,7 +18,7 @@ import type { Route } from './http/route';
 export function allRoutes(): Route[] {
   const routes: Route[] = [...sessionRoutes, ...setUpRoutes, ...invitationRoutes, ...peopleRoutes, ...recordRoutes, ...runRoutes];
   routes.push(...modelRoutes(), ...sampleRoutes());
-  routes.push(...fitRoutes, ...comparisonRoutes);
+  routes.push(...fitRoutes, ...comparisonRoutes, ...scorecardRoutes);
   routes.push(...outOfTimeRoutes, ...binningRoutes);
   routes.push(...healthRoutes(() => routes));
   return routes;

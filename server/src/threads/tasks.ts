@@ -1,4 +1,5 @@
 import { classColumn, reclassFine, splitColumn } from '../classing/class-column';
+import { buildScorecard } from './build-scorecard';
 import { compareFits } from './compare-fits';
 import { fitPenaltyPath } from './fit-path';
 import { hashPassword, verifyPassword } from './passwords';
@@ -17,6 +18,7 @@ export const tasks = {
   'password.hash': hashPassword,
   'password.verify': verifyPassword,
   'sample.prepare': prepareSample,
+  'scorecard.build': buildScorecard,
 } as const;
 
 export type Tasks = typeof tasks;

@@ -3,6 +3,7 @@ import type { Sequelize } from 'sequelize';
 import { binningWorkStep } from '../binnings/work-step';
 import { fitWorkStep } from '../fits/work-step';
 import { sampleWorkStep } from '../samples/work-step';
+import { scorecardWorkStep } from '../scorecards/work-step';
 
 /** What one entity says about its step: whether it is done or waits for a decision, in one short caption. */
 export interface StepReport {
@@ -28,7 +29,7 @@ const reporters: Record<WorkStepName, StepReporter> = {
   sample: sampleWorkStep,
   binning: binningWorkStep,
   fit: fitWorkStep,
-  scorecard: async () => null,
+  scorecard: scorecardWorkStep,
   version: async () => null,
   validation: async () => null,
   documentation: async () => null,
