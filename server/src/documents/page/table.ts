@@ -13,6 +13,8 @@ export interface TableRow {
   cells: string[];
   /** "strong" for sums, "quiet" for what was not kept. */
   tone?: 'strong' | 'quiet';
+  /** What the empty first cell of a row stands under; said again when the row comes first on a new page. */
+  under?: string;
 }
 
 export interface TableSpec {
@@ -228,7 +230,11 @@ export function prepareTable(sheet: Sheet, spec: TableSpec): PreparedTable {
       const tall = height > (textBottom - page.top) / 2;
       // The last two rows stay together, so that none stands alone under its titles.
       const following = index === rowCells.length - 2 ? Math.min(heightOf(rowCells[index + 1]), 60) : 0;
-      if (sheet.y + height + following > bottom && !tall) continueTable();
+      if (sheet.y + height + following > bottom && !tall) {
+        continueTable();
+        const under = spec.rows[index].under;
+        if (under !== undefined) cells[0] = breakCell(`${under} (continued)`, 0, 'regular');
+      }
       const count = Math.max(...cells.map((cell) => cell.lines.length));
       let from = 0;
       while (from < count) {
@@ -245,7 +251,8 @@ export function prepareTable(sheet: Sheet, spec: TableSpec): PreparedTable {
         if (from < count) continueTable();
       }
       const strongNext = spec.rows[index + 1]?.tone === 'strong';
-      sheet.rule(sheet.y, strongNext ? colour.ink2 : colour.hairline, 0.5, x, right);
+      const nextStandsUnder = spec.rows[index + 1]?.under !== undefined;
+      sheet.rule(sheet.y, strongNext ? colour.ink2 : colour.hairline, 0.5, nextStandsUnder ? lefts[1] : x, right);
     });
   };
   return { startHeight, draw };

@@ -1,6 +1,8 @@
 import type { ResultCharacteristic } from '@tallystone/contracts/result/types';
 import { fixed, plural, significant, whole, woe } from '../number-texts';
+import { linearScale } from '../charts/plot';
 import type { Writer } from '../page/writer';
+import { colour } from '../tokens';
 import { judgementCaution } from './wording';
 
 const isKept = (entry: ResultCharacteristic): boolean =>
@@ -63,6 +65,8 @@ export function writeFinalModel(writer: Writer): void {
       ' Each points value is rounded to the nearest integer, halves away from zero, then summed.',
   );
   const reasonTexts = specification.reasons.texts;
+  const everyPoint = kept.flatMap((entry) => entry.bins.map((bin) => bin.pointsRounded));
+  const reach = linearScale(Math.min(0, ...everyPoint), Math.max(1, ...everyPoint), 0, 1);
   writer.table('Points by attribute', input.resultEvidence, {
     columns: [
       { title: 'Characteristic', grow: 2 },
@@ -80,8 +84,20 @@ export function writeFinalModel(writer: Writer): void {
           fixed(bin.points, 4),
           whole(bin.pointsRounded),
         ],
+        under: index === 0 ? undefined : writer.label(entry.column),
       })),
     ),
+    drawing: {
+      title: '',
+      width: 120,
+      row: (index, box) => {
+        const zero = box.x + reach(0) * box.width;
+        const end = box.x + reach(everyPoint[index]) * box.width;
+        const { doc } = writer.sheet;
+        doc.rect(Math.min(zero, end), box.y + box.height / 2 - 3, Math.abs(end - zero), 6).fill(colour.container);
+        doc.rect(end - 1, box.y + box.height / 2 - 4.5, 2, 9).fill(colour.primary);
+      },
+    },
   });
   const rounding = result.metrics.development;
   if (rounding !== null) {

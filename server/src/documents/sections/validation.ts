@@ -143,6 +143,7 @@ function writePointsStability(writer: Writer): void {
             whole(bin.pointsRounded),
             range === null ? '–' : intervalText(range.lower, range.upper, 1),
           ],
+          under: index === 0 ? undefined : writer.label(entry.column),
         };
       }),
     ),

@@ -1,0 +1,301 @@
+import { execFileSync } from 'node:child_process';
+import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
+import { tmpdir } from 'node:os';
+import { join } from 'node:path';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { evidenceFingerprint } from './fingerprints';
+import type { DocumentInput } from './input';
+import { renderDocument } from './render-document';
+import { page } from './tokens';
+import { hash, inventedInput } from './testing/invented-input';
+
+/** Text and geometry are read back with poppler's pdftotext and pdfinfo, an independent reader. */
+const fixedDate = new Date('2026-11-30T12:00:00.000Z');
+let folder: string;
+beforeAll(() => {
+  folder = mkdtempSync(join(tmpdir(), 'document-'));
+});
+afterAll(() => rmSync(folder, { recursive: true }));
+
+function poppler(tool: string, bytes: Buffer, ...options: string[]): string {
+  const file = join(folder, 'document.pdf');
+  writeFileSync(file, bytes);
+  return execFileSync(tool, tool === 'pdftotext' ? [...options, file, '-'] : [...options, file], {
+    encoding: 'utf8',
+    maxBuffer: 1e9,
+  });
+}
+
+/** The text with any run of white space (thin spaces too) made one blank, so that line breaks do not matter. */
+const wordsOf = (bytes: Buffer): string => poppler('pdftotext', bytes, '-layout').replace(/\s+/g, ' ');
+
+interface Word {
+  page: number;
+  left: number;
+  top: number;
+  right: number;
+  bottom: number;
+  text: string;
+}
+
+function placedWords(bytes: Buffer): Word[] {
+  const words: Word[] = [];
+  let number = 0;
+  for (const match of poppler('pdftotext', bytes, '-bbox').matchAll(
+    /<page |<word xMin="([\d.-]+)" yMin="([\d.-]+)" xMax="([\d.-]+)" yMax="([\d.-]+)">(.*?)<\/word>/g,
+  )) {
+    if (match[0] === '<page ') number += 1;
+    else {
+      const [left, top, right, bottom] = match.slice(1, 5).map(Number);
+      words.push({ page: number, left, top, right, bottom, text: match[5] });
+    }
+  }
+  return words;
+}
+
+/** Words that leave the frame of the text: a point of slack for what glyphs overhang, and the footer's own lines below it. */
+const outside = (words: Word[]): Word[] =>
+  words.filter(
+    (word) =>
+      word.left < page.left - 1 || word.right > page.width - page.right + 1 || word.top < 40 || word.bottom > page.height - 14,
+  );
+
+/** Pairs of words on one page that cover each other by more than their thin edges. */
+function overlapping(words: Word[]): [string, string][] {
+  const found: [string, string][] = [];
+  const byPage = new Map<number, Word[]>();
+  for (const word of words) byPage.set(word.page, [...(byPage.get(word.page) ?? []), word]);
+  for (const list of byPage.values()) {
+    const sorted = [...list].sort((first, second) => first.top - second.top);
+    sorted.forEach((first, index) => {
+      for (const second of sorted.slice(index + 1)) {
+        if (second.top >= first.bottom) break;
+        const high = Math.min(first.bottom, second.bottom) - Math.max(first.top, second.top);
+        const wide = Math.min(first.right, second.right) - Math.max(first.left, second.left);
+        if (wide > 0.8 && high > 0.55 * Math.min(first.bottom - first.top, second.bottom - second.top))
+          found.push([first.text, second.text]);
+      }
+    });
+  }
+  return found;
+}
+
+describe('the document of a complete version', () => {
+  const input = inventedInput();
+  let bytes: Buffer;
+  let words: string;
+  beforeAll(async () => {
+    bytes = await renderDocument(input, { fixedDate });
+    words = wordsOf(bytes);
+  }, 120_000);
+
+  it('has the same bytes for the same input and date, and others for another date', async () => {
+    expect((await renderDocument(inventedInput(), { fixedDate })).equals(bytes)).toBe(true);
+    expect((await renderDocument(inventedInput(), { fixedDate: new Date('2026-12-01T12:00:00.000Z') })).equals(bytes)).toBe(
+      false,
+    );
+  }, 180_000);
+
+  it('says the numbers of the result', () => {
+    expect(words).toContain('AUC 0.781 0.774 0.758');
+    expect(words).toContain('0.764 to 0.798'); // 0.781 ∓ 1.959964 × 0.0087
+    expect(words).toContain('Hosmer-Lemeshow statistic 9.31 9.31 9.31');
+    expect(words).toContain('Hosmer-Lemeshow p-value 0.317 0.317 0.317');
+    expect(words).toContain('Rows with known outcome 10 000 4 286 2 746');
+    expect(words).toContain('optimality residual 3.20e−11');
+    expect(words).toContain('Penalty chosen 0.00428521 by the one-standard-error rule [E-2]');
+    expect(words).toContain('keeps 11 characteristics of 12');
+  });
+
+  it('says each coefficient and each points value', () => {
+    for (const { coefficient, bins } of input.result.characteristics) {
+      if (coefficient === null || coefficient === 0) continue;
+      expect(words).toContain(coefficient.toFixed(6));
+      for (const bin of bins)
+        expect(words).toContain(`${bin.points.toFixed(4).replace('-', '−')} ${String(bin.pointsRounded).replace('-', '−')}`);
+    }
+  });
+
+  it('reconciles the waterfall, and says so when it does not', async () => {
+    expect(words).toContain('The steps reconcile exactly');
+    const off = inventedInput();
+    off.waterfall!.steps[0].rows -= 3;
+    expect(wordsOf(await renderDocument(off, { fixedDate }))).toContain(
+      'The steps do not reconcile: 3 rows are not accounted for',
+    );
+  }, 120_000);
+
+  it('bears its fingerprints on the cover and, short, on each page', () => {
+    const cover = poppler('pdftotext', bytes, '-layout', '-l', '1');
+    const pages = Number(/Pages:\s+(\d+)/.exec(poppler('pdfinfo', bytes))?.[1]);
+    for (const whole of [
+      input.version.fingerprint,
+      input.result.dataSha256,
+      evidenceFingerprint(input.evidence),
+      input.recordHead.hash,
+    ]) {
+      expect(cover).toContain(whole);
+    }
+    const feet = words.match(
+      new RegExp(
+        `version ${input.version.fingerprint.slice(0, 16)} evidence ${evidenceFingerprint(input.evidence).slice(0, 16)} record 251`,
+        'g',
+      ),
+    );
+    expect(feet).toHaveLength(pages);
+    expect(words).toContain(`${pages} of ${pages}`);
+  });
+
+  it('lists all evidence with its whole SHA-256', () => {
+    for (const item of input.evidence) expect(words).toContain(`${item.title} ${item.sha256}`);
+  });
+
+  it('has the sections of this edition in the contents and names those that it has not', () => {
+    for (const title of [
+      '1 Summary',
+      '2 Purpose',
+      '4 Population',
+      '5 Outcome',
+      '6 Data',
+      '8 Classing',
+      '9 Method',
+      '10 Final model',
+      '11 Performance',
+      '15 Validation',
+      '18 Change',
+    ]) {
+      expect(words).toContain(title);
+    }
+    expect(words).toContain('Sections 3, 7, 12, 13, 14, 16, 17 of the lender’s outline are not part of this edition');
+  });
+
+  it('prints the cautions and how often the out-of-time figures were opened', () => {
+    expect(words).toContain('aids to judgement');
+    expect(words).toContain('Qualified legal, compliance and validation staff decide');
+    expect(words).toContain('opened 1 time before freezing');
+    expect(words).toContain('its deviance is optimistic');
+  });
+
+  it('is tagged, titled and in a language', () => {
+    const facts = poppler('pdfinfo', bytes);
+    expect(facts).toMatch(/Tagged:\s+yes/);
+    expect(facts).toMatch(/Title:\s+Personal loans, application scorecard, version 1: model-governance document/);
+    expect(facts).toMatch(/PDF version:\s+1\.7/);
+    expect(bytes.includes('/Lang (en-GB)')).toBe(true);
+    const structure = poppler('pdfinfo', bytes, '-struct');
+    expect(structure).toContain('H1');
+    expect(structure).toContain('Figure');
+    expect(structure).toContain('TH');
+  });
+
+  it('keeps all text inside its margins and no word on another', () => {
+    const placed = placedWords(bytes);
+    expect(placed.length).toBeGreaterThan(2000);
+    expect(outside(placed)).toEqual([]);
+    expect(overlapping(placed)).toEqual([]);
+  });
+});
+
+describe('a document with much missing', () => {
+  it('says "not evidenced" for each part that is not there, and covers out-of-time figures', async () => {
+    const bare: DocumentInput = {
+      ...inventedInput(),
+      signatures: [],
+      texts: [],
+      evidence: [],
+      resultEvidence: null,
+      sourceFile: null,
+      waterfall: null,
+      windows: null,
+      quality: null,
+      classing: null,
+      outOfTime: { covered: true, openings: [] },
+      penaltyChoice: null,
+      stability: null,
+      scoreDistributions: [],
+      bandCalibrations: [],
+      comparisons: [],
+      replications: [],
+      validation: null,
+      history: null,
+    };
+    bare.result = { ...bare.result, crossValidation: null };
+    const words = wordsOf(await renderDocument(bare, { fixedDate }));
+    for (const what of [
+      'Replication',
+      'Sign-offs',
+      'Recommendation (to be written by the author)',
+      'Waterfall from the rows of the file to the rows of the sample',
+      'Source file',
+      'Quality of the columns',
+      'Cross-validation',
+      'Choice of the penalty',
+      'Stability over resamples',
+      'Score distribution',
+      'Mean PD by band',
+      'Validation',
+      'Opinion (to be written by the validator)',
+      'Change history from the record of actions',
+      'Evidence',
+    ]) {
+      expect(words).toContain(`${what}: not evidenced.`);
+    }
+    expect(words).toContain('Headline figures by partition [not evidenced]');
+    expect(words).toContain('Out-of-time figures are covered and are not printed');
+    expect(words).not.toContain('0.758');
+  }, 120_000);
+});
+
+describe('a document of uncommon size', () => {
+  it('keeps 60 characteristics, long texts and long names inside the pages', async () => {
+    const input = inventedInput(60);
+    const long = 'The reasons are many and each is given in full, with its circumstances and its consequences. '.repeat(120);
+    input.texts.push({
+      section: 11,
+      topic: 'Interpretation',
+      text: `${long}\n\n${long}`,
+      author: 'A person with a name that runs on and on and on',
+      writtenAt: '2026-11-20',
+    });
+    input.validation!.opinion = long;
+    input.validation!.findings[0].description = long;
+    input.columns[3].label = 'Payment to income, of the loan asked for, before any other loan is counted, in hundredths';
+    input.result.characteristics[1].bins[0].label = Array.from({ length: 400 }, (_, index) => `category ${index}`).join(', ');
+    input.result.characteristics[2].bins[1].label = 'x'.repeat(300);
+    input.model.name =
+      'Personal loans of all kinds through every channel, application scorecard for new and for returning members';
+    input.version.state = 'Approved with conditions';
+    input.history = Array.from({ length: 120 }, (_, index) => ({
+      sequence: index + 1,
+      at: '2026-11-20T10:00:00.000Z',
+      by: 'Modeller at Saltmarsh Mutual',
+      act: `edited ${index}`,
+      reason: null,
+    }));
+    const bytes = await renderDocument(input, { fixedDate });
+    const placed = placedWords(bytes);
+    const pages = Math.max(...placed.map((word) => word.page));
+    expect(pages).toBeGreaterThan(30);
+    expect(pages).toBeLessThan(120);
+    expect(outside(placed)).toEqual([]);
+    expect(overlapping(placed)).toEqual([]);
+    expect(placed.filter((word) => word.text.startsWith('category')).length).toBeGreaterThan(390);
+  }, 240_000);
+});
+
+describe('an input that does not hang together', () => {
+  it('is refused with every problem and its place', async () => {
+    const input = inventedInput();
+    input.stability!.evidence = 'E-99';
+    input.classing!.characteristics[0].holdOut!.pop();
+    input.scoreDistributions[0].goods.pop();
+    input.recordHead.hash = 'short';
+    const error: unknown = await renderDocument(input, { fixedDate }).catch((reason: unknown) => reason);
+    expect(String(error)).toContain('recordHead');
+    input.recordHead.hash = hash('record');
+    const second = String(await renderDocument(input, { fixedDate }).catch((reason: unknown) => reason));
+    expect(second).toContain('E-99 is not in the list of evidence');
+    expect(second).toContain('has 4 bins in the result and 3 here');
+    expect(second).toContain('One count fewer than edges is wanted');
+  });
+});
