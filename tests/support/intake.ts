@@ -7,6 +7,7 @@ import { readConfig } from '../../server/src/config/environment';
 import { type Context, openContext } from '../../server/src/context';
 import { inTransaction } from '../../server/src/database/transaction';
 import { type WorkerService, startWorker } from '../../server/src/jobs/worker';
+import type { Handler } from '../../server/src/jobs/handler';
 import { createLog } from '../../server/src/logging/log';
 import { hashPassword } from '../../server/src/services/passwords/prepare';
 import { createPerson } from '../../server/src/services/people/create';
@@ -27,12 +28,12 @@ export class IntakeServer {
     private readonly worker: WorkerService | null,
   ) {}
 
-  static async start(options: { worker?: boolean } = {}): Promise<IntakeServer> {
+  static async start(options: { worker?: boolean; handlers?: readonly Handler[]; environment?: Record<string, string> } = {}): Promise<IntakeServer> {
     const database = await createTestDatabase();
     const folder = createTestDataFolder();
-    const config = readConfig(IntakeServer.environment(database, folder));
+    const config = readConfig({ ...IntakeServer.environment(database, folder), ...options.environment });
     const context = await openContext(config, createLog(config.logLevel));
-    const worker = options.worker === false ? null : await startWorker(context);
+    const worker = options.worker === false ? null : await startWorker(context, options.handlers);
     return new IntakeServer(database, folder, context, buildApp(context), worker);
   }
 
@@ -68,6 +69,7 @@ export class IntakeServer {
 /** Someone in front of a browser: keeps cookies and sends the cross-site token as the client does. */
 export class Visitor {
   private token = '';
+  private readonly cookies = new Map<string, string>();
 
   constructor(
     readonly agent: ReturnType<typeof supertest.agent>,
@@ -83,9 +85,15 @@ export class Visitor {
     const response = await request;
     const cookies = response.headers['set-cookie'] as unknown as string[] | undefined;
     for (const cookie of cookies ?? []) {
-      const match = /^XSRF-TOKEN=([^;]*)/.exec(cookie);
-      if (match) this.token = decodeURIComponent(match[1]);
+      const [, name, value] = /^([^=]+)=([^;]*)/.exec(cookie) ?? [];
+      this.cookies.set(name, value);
+      if (name === 'XSRF-TOKEN') this.token = decodeURIComponent(value);
     }
+  }
+
+  /** For requests that another client sends in this person's name. */
+  credentials(): { cookie: string; token: string } {
+    return { cookie: [...this.cookies].map(([name, value]) => `${name}=${value}`).join('; '), token: this.token };
   }
 
   get = (path: string): supertest.Test => this.agent.get(path);
