@@ -1,0 +1,149 @@
+import fc from 'fast-check';
+import { describe, expect, it } from 'vitest';
+import { classCategories } from './categories';
+import { classNumeric, trendOf, type Constraints } from './classing';
+import { weightOfEvidence } from './weight-of-evidence';
+
+const open: Constraints = { smallestShare: 0, smallestGoods: 0, smallestBads: 0, mostBins: 8, smallestDifference: 0, trend: 'any' };
+
+interface Fine {
+  goods: number[];
+  bads: number[];
+  rows: number[];
+}
+
+function merged(fine: Fine, cuts: readonly number[]) {
+  const ends = [...cuts, fine.rows.length];
+  const sums = (counts: number[]): number[] => ends.map((end, b) => counts.slice(b === 0 ? 0 : ends[b - 1], end).reduce((x, y) => x + y, 0));
+  return { goods: sums(fine.goods), bads: sums(fine.bads), rows: sums(fine.rows) };
+}
+
+/** Whether a set of cuts satisfies the constraints, written from their definition and not from the search. */
+function allowed(fine: Fine, cuts: readonly number[], constraints: Constraints): boolean {
+  const bins = merged(fine, cuts);
+  const total = fine.rows.reduce((x, y) => x + y, 0);
+  if (bins.rows.length > constraints.mostBins) return false;
+  if (bins.goods.some((g) => g === 0 || g < constraints.smallestGoods)) return false;
+  if (bins.bads.some((b) => b === 0 || b < constraints.smallestBads)) return false;
+  if (bins.rows.some((n) => n / total < constraints.smallestShare - 1e-12)) return false;
+  const woe = bins.goods.map((g, i) => Math.log(g / bins.bads[i]));
+  const steps = woe.slice(1).map((value, i) => value - woe[i]);
+  if (steps.some((step) => Math.abs(step) < constraints.smallestDifference)) return false;
+  const rising = (part: number[]): boolean => part.every((step) => step >= 0);
+  const falling = (part: number[]): boolean => part.every((step) => step <= 0);
+  const turns = (first: (part: number[]) => boolean, then: (part: number[]) => boolean): boolean =>
+    Array.from({ length: steps.length + 1 }, (_, k) => k).some((k) => first(steps.slice(0, k)) && then(steps.slice(k)));
+  if (constraints.trend === 'rising') return rising(steps);
+  if (constraints.trend === 'falling') return falling(steps);
+  if (constraints.trend === 'one-peak') return turns(rising, falling);
+  return constraints.trend === 'one-valley' ? turns(falling, rising) : true;
+}
+
+/** Largest information value over every set of cuts. */
+function bruteForce(fine: Fine, constraints: Constraints): number {
+  let best = 0;
+  for (let mask = 0; mask < 2 ** (fine.rows.length - 1); mask++) {
+    const cuts = Array.from({ length: fine.rows.length - 1 }, (_, k) => k + 1).filter((k) => mask & (1 << (k - 1)));
+    if (!allowed(fine, cuts, constraints)) continue;
+    const bins = merged(fine, cuts);
+    best = Math.max(best, weightOfEvidence(bins.goods, bins.bads, { amount: 0, when: 'never' }).informationValue);
+  }
+  return best;
+}
+
+const fineClasses = fc
+  .array(fc.tuple(fc.integer({ min: 0, max: 40 }), fc.integer({ min: 0, max: 25 })), { minLength: 1, maxLength: 10 })
+  .map((cells): Fine => ({ goods: cells.map(([g]) => g), bads: cells.map(([, b]) => b), rows: cells.map(([g, b]) => g + b) }))
+  .filter((fine) => fine.goods.some((g) => g > 0) && fine.bads.some((b) => b > 0));
+
+const constraintSets = fc.record({
+  smallestShare: fc.constantFrom(0, 0.05, 0.1, 0.25),
+  smallestGoods: fc.constantFrom(0, 5, 20),
+  smallestBads: fc.constantFrom(0, 5, 15),
+  mostBins: fc.integer({ min: 1, max: 8 }),
+  smallestDifference: fc.constantFrom(0, 0.05, 0.4),
+  trend: fc.constantFrom('any', 'rising', 'falling', 'one-peak', 'one-valley') as fc.Arbitrary<Constraints['trend']>,
+});
+
+describe('classNumeric', () => {
+  it('is exactly as good as trying every set of cuts', () => {
+    fc.assert(
+      fc.property(fineClasses, constraintSets, (fine, constraints) => {
+        const { cuts, informationValue } = classNumeric(fine, constraints);
+        expect(informationValue).toBeCloseTo(bruteForce(fine, constraints), 9);
+        if (cuts.length > 0) expect(allowed(fine, cuts, constraints)).toBe(true);
+      }),
+      { numRuns: 400 },
+    );
+  });
+
+  it('does not depend on the scale of the weights', () => {
+    fc.assert(
+      fc.property(fineClasses, (fine) => {
+        const half = { ...fine, goods: fine.goods.map((g) => g / 2), bads: fine.bads.map((b) => b / 2) };
+        expect(classNumeric(half, open).informationValue).toBeCloseTo(classNumeric(fine, open).informationValue, 9);
+      }),
+    );
+  });
+
+  it('prefers fewer bins where more bring nothing', () => {
+    const same = { goods: [10, 10, 10], bads: [5, 5, 5], rows: [15, 15, 15] };
+    expect(classNumeric(same, open)).toEqual({ cuts: [], informationValue: 0, trend: 'flat' });
+  });
+
+  it('gives one bin when nothing satisfies the constraints', () => {
+    const { cuts, trend } = classNumeric({ goods: [3, 4], bads: [2, 1], rows: [5, 5] }, { ...open, smallestBads: 20 });
+    expect([cuts, trend]).toEqual([[], 'flat']);
+  });
+
+  it('classes a hundred fine classes at once', () => {
+    const goods = Array.from({ length: 100 }, (_, i) => 150 + Math.round(60 * Math.sin(i / 12)));
+    const bads = Array.from({ length: 100 }, (_, i) => 40 + Math.round(25 * Math.cos(i / 30)));
+    const rows = goods.map((g, i) => g + bads[i]);
+    const constraints: Constraints = { smallestShare: 0.05, smallestGoods: 20, smallestBads: 20, mostBins: 8, smallestDifference: 0.05, trend: 'rising' };
+    const { cuts, trend } = classNumeric({ goods, bads, rows }, constraints);
+    expect(trend).toBe('rising');
+    expect(allowed({ goods, bads, rows }, cuts, constraints)).toBe(true);
+  });
+
+  it('names trends', () => {
+    expect([[1], [1, 2], [2, 2, 1], [1, 3, 2], [2, 1, 3], [1, 3, 2, 4]].map(trendOf)).toEqual(['flat', 'rising', 'falling', 'one-peak', 'one-valley', 'mixed']);
+  });
+});
+
+describe('classCategories', () => {
+  const category = (goods: number, bads: number) => ({ goods, bads, rows: goods + bads });
+
+  it('orders by bad rate and pools what is rare', () => {
+    const categories = [category(60, 40), category(95, 5), category(1, 0), category(90, 12), category(0, 2), category(50, 50)];
+    const { groups } = classCategories(categories, { ...open, smallestShare: 0.1, mostBins: 3, smallestDifference: 0.1 });
+    expect(groups.flat().sort()).toEqual([0, 1, 2, 3, 4, 5]);
+    const rates = groups.map((group) => group.reduce((sum, i) => sum + categories[i].bads, 0) / group.reduce((sum, i) => sum + categories[i].rows, 0));
+    rates.slice(1).forEach((rate, g) => expect(rate).toBeGreaterThan(rates[g]));
+    expect(groups.find((group) => group.includes(2))).toContain(4);
+  });
+
+  it('is as good as every grouping of a few categories', () => {
+    const cell = fc.tuple(fc.integer({ min: 5, max: 60 }), fc.integer({ min: 5, max: 60 }));
+    fc.assert(
+      fc.property(fc.array(cell, { minLength: 2, maxLength: 6 }), fc.integer({ min: 1, max: 3 }), (cells, mostBins) => {
+        const categories = cells.map(([g, b]) => category(g, b));
+        let best = 0;
+        for (let code = 0; code < mostBins ** cells.length; code++) {
+          const goods = new Float64Array(mostBins);
+          const bads = new Float64Array(mostBins);
+          categories.forEach(({ goods: g, bads: b }, i) => {
+            const group = Math.floor(code / mostBins ** i) % mostBins;
+            goods[group] += g;
+            bads[group] += b;
+          });
+          best = Math.max(best, weightOfEvidence(goods, bads, { amount: 0, when: 'never' }).informationValue);
+        }
+        expect(classCategories(categories, { ...open, mostBins }).informationValue).toBeCloseTo(best, 9);
+      }),
+      { numRuns: 60 },
+    );
+  });
+
+  it('takes no category at all', () => expect(classCategories([], open)).toEqual({ groups: [], informationValue: 0 }));
+});
