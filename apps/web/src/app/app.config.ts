@@ -1,8 +1,19 @@
 import { APP_BASE_HREF } from '@angular/common';
 import { provideHttpClient, withFetch, withInterceptors } from '@angular/common/http';
-import { ApplicationConfig, ErrorHandler, provideBrowserGlobalErrorListeners, provideZonelessChangeDetection } from '@angular/core';
-import { MAT_FORM_FIELD_DEFAULT_OPTIONS, MatFormFieldDefaultOptions } from '@angular/material/form-field';
-import { TitleStrategy, provideRouter, withComponentInputBinding, withInMemoryScrolling, withRouterConfig } from '@angular/router';
+import {
+  type ApplicationConfig,
+  ErrorHandler,
+  provideBrowserGlobalErrorListeners,
+  provideZonelessChangeDetection,
+} from '@angular/core';
+import { MAT_FORM_FIELD_DEFAULT_OPTIONS, type MatFormFieldDefaultOptions } from '@angular/material/form-field';
+import {
+  TitleStrategy,
+  provideRouter,
+  withComponentInputBinding,
+  withInMemoryScrolling,
+  withRouterConfig,
+} from '@angular/router';
 import { routes } from './app.routes';
 import { ShowsFailures } from './core/errors';
 import { problemInterceptor, signedOutInterceptor } from './core/http/interceptors';
@@ -28,7 +39,12 @@ export const appConfig: ApplicationConfig = {
     { provide: ErrorHandler, useClass: ShowsFailures },
     {
       provide: MAT_FORM_FIELD_DEFAULT_OPTIONS,
-      useValue: { appearance: 'outline', subscriptSizing: 'dynamic', floatLabel: 'always', hideRequiredMarker: true } satisfies MatFormFieldDefaultOptions,
+      useValue: {
+        appearance: 'outline',
+        subscriptSizing: 'dynamic',
+        floatLabel: 'always',
+        hideRequiredMarker: true,
+      } satisfies MatFormFieldDefaultOptions,
     },
   ],
 };

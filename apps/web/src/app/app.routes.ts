@@ -1,4 +1,4 @@
-import { Routes } from '@angular/router';
+import { type Routes } from '@angular/router';
 import { able, signedIn } from './core/guards';
 import { Frame } from './shell/frame';
 
@@ -20,13 +20,28 @@ export const routes: Routes = [
         canMatch: [(_route, segments) => segments[1]?.path !== 'new'],
         loadComponent: () => import('./shell/model-frame').then((m) => m.ModelFrame),
         children: [
-          { path: 'sample', loadChildren: () => import('./features/data-intake/data-intake.routes').then((m) => m.dataIntakeRoutes) },
+          {
+            path: 'sample',
+            loadChildren: () => import('./features/data-intake/data-intake.routes').then((m) => m.dataIntakeRoutes),
+          },
           { path: 'binning', loadChildren: () => import('./features/binning/binning.routes').then((m) => m.binningRoutes) },
-          { path: 'fit', loadChildren: () => import('./features/model-fitting/model-fitting.routes').then((m) => m.modelFittingRoutes) },
-          { path: 'comparison', loadChildren: () => import('./features/comparison/comparison.routes').then((m) => m.comparisonRoutes) },
-          { path: 'scorecard', loadChildren: () => import('./features/scorecard/scorecard.routes').then((m) => m.scorecardRoutes) },
+          {
+            path: 'fit',
+            loadChildren: () => import('./features/model-fitting/model-fitting.routes').then((m) => m.modelFittingRoutes),
+          },
+          {
+            path: 'comparison',
+            loadChildren: () => import('./features/comparison/comparison.routes').then((m) => m.comparisonRoutes),
+          },
+          {
+            path: 'scorecard',
+            loadChildren: () => import('./features/scorecard/scorecard.routes').then((m) => m.scorecardRoutes),
+          },
           { path: 'version', loadChildren: () => import('./features/validation/validation.routes').then((m) => m.versionRoutes) },
-          { path: 'validation', loadChildren: () => import('./features/validation/validation.routes').then((m) => m.validationRoutes) },
+          {
+            path: 'validation',
+            loadChildren: () => import('./features/validation/validation.routes').then((m) => m.validationRoutes),
+          },
           {
             path: 'documentation',
             loadChildren: () => import('./features/documentation/documentation.routes').then((m) => m.documentationRoutes),
@@ -36,9 +51,20 @@ export const routes: Routes = [
       },
       { path: 'models', loadChildren: () => import('./features/models/models.routes').then((m) => m.inventoryRoutes) },
       { path: 'reviews', loadChildren: () => import('./features/validation/validation.routes').then((m) => m.reviewRoutes) },
-      { path: 'documents', loadChildren: () => import('./features/documentation/documentation.routes').then((m) => m.documentRoutes) },
-      { path: 'record', canMatch: [able('record.read')], loadChildren: () => import('./features/admin/admin.routes').then((m) => m.recordRoutes) },
-      { path: 'people', canMatch: [able('people.read')], loadChildren: () => import('./features/admin/admin.routes').then((m) => m.peopleRoutes) },
+      {
+        path: 'documents',
+        loadChildren: () => import('./features/documentation/documentation.routes').then((m) => m.documentRoutes),
+      },
+      {
+        path: 'record',
+        canMatch: [able('record.read')],
+        loadChildren: () => import('./features/admin/admin.routes').then((m) => m.recordRoutes),
+      },
+      {
+        path: 'people',
+        canMatch: [able('people.read')],
+        loadChildren: () => import('./features/admin/admin.routes').then((m) => m.peopleRoutes),
+      },
       { path: 'account', loadChildren: () => import('./features/account/account.routes').then((m) => m.accountRoutes) },
       { path: '**', title: 'Not found', loadComponent: () => import('./shell/not-found').then((m) => m.NotFound) },
     ],

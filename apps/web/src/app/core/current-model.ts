@@ -3,7 +3,7 @@ import { Injectable, computed, inject, signal } from '@angular/core';
 import type { Model, ModelWork, WorkStep } from '@tallystone/contracts/models/schema';
 import { firstValueFrom } from 'rxjs';
 import { tagged } from './http/etag';
-import { Problem, asProblem } from './http/problem';
+import { type Problem, asProblem } from './http/problem';
 
 export type { Model, WorkStep };
 

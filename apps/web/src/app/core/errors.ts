@@ -1,5 +1,5 @@
-import { ErrorHandler, Injectable, inject, signal } from '@angular/core';
-import { Problem, asProblem } from './http/problem';
+import { type ErrorHandler, Injectable, inject, signal } from '@angular/core';
+import { type Problem, asProblem } from './http/problem';
 
 /** Failures nobody caught, kept for the frame to show; what happened, what was not done, and the request's id. */
 @Injectable({ providedIn: 'root' })

@@ -1,5 +1,5 @@
 import { inject } from '@angular/core';
-import { CanActivateFn, CanMatchFn, RedirectCommand, Router } from '@angular/router';
+import { type CanActivateFn, type CanMatchFn, RedirectCommand, Router } from '@angular/router';
 import { Session } from './session';
 
 /** Lets signed-in people through; others sign in first and come back to the same address. */

@@ -1,7 +1,7 @@
 import { DOCUMENT } from '@angular/common';
 import { Injectable, Injector, afterNextRender, inject } from '@angular/core';
 import { Title } from '@angular/platform-browser';
-import { NavigationEnd, Router, RouterStateSnapshot, TitleStrategy } from '@angular/router';
+import { NavigationEnd, Router, type RouterStateSnapshot, TitleStrategy } from '@angular/router';
 import { filter, map, pairwise, startWith } from 'rxjs';
 import { CurrentModel } from './current-model';
 

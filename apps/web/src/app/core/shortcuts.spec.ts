@@ -56,7 +56,9 @@ describe('Shortcuts', () => {
 
   it('go when what registered them goes', () => {
     const page = createEnvironmentInjector([], TestBed.inject(EnvironmentInjector));
-    runInInjectionContext(page, () => shortcuts.add({ keys: 'm', does: 'Merge', where: 'Binning', run: () => void done.push('merge') }));
+    runInInjectionContext(page, () =>
+      shortcuts.add({ keys: 'm', does: 'Merge', where: 'Binning', run: () => void done.push('merge') }),
+    );
     press('m');
     page.destroy();
     press('m');

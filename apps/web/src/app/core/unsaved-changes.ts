@@ -1,5 +1,5 @@
-import { DestroyRef, Injectable, Signal, inject } from '@angular/core';
-import { CanDeactivateFn } from '@angular/router';
+import { DestroyRef, Injectable, type Signal, inject } from '@angular/core';
+import { type CanDeactivateFn } from '@angular/router';
 
 /** A page that can hold work not yet saved. */
 export interface HoldsWork {

@@ -23,9 +23,13 @@ import { ShortcutList } from './shortcut-list';
         <ul>
           @for (place of open(); track place.path) {
             <li>
-              <a [routerLink]="place.path" routerLinkActive="on" #link="routerLinkActive" [attr.aria-current]="link.isActive ? 'page' : null">{{
-                place.label
-              }}</a>
+              <a
+                [routerLink]="place.path"
+                routerLinkActive="on"
+                #link="routerLinkActive"
+                [attr.aria-current]="link.isActive ? 'page' : null"
+                >{{ place.label }}</a
+              >
             </li>
           }
         </ul>

@@ -26,7 +26,7 @@ import { WorksRule } from './works-rule';
     } @else {
       <div class="head">
         <div class="title">
-          <h1>{{ current.name() ?? '\u2026' }}</h1>
+          <h1>{{ current.name() ?? '…' }}</h1>
           @if (current.model(); as model) {
             <p class="ts-second">
               <a class="number" [routerLink]="['/models', model.id]">{{ model.inventoryNumber }}</a>

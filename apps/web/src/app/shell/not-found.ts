@@ -12,7 +12,10 @@ import { PageHeader } from '../ui/page-header';
   host: { class: 'ts-page' },
   template: `
     <ts-page-header title="Nothing at this address" />
-    <ts-empty title="The page does not exist, or it is not open to you" text="A link may be old, or your roles may have changed since it was made.">
+    <ts-empty
+      title="The page does not exist, or it is not open to you"
+      text="A link may be old, or your roles may have changed since it was made."
+    >
       <a matButton="outlined" routerLink="/models">To the models</a>
     </ts-empty>
   `,

@@ -4,7 +4,7 @@ import { MatIconModule } from '@angular/material/icon';
 import { MatMenuModule } from '@angular/material/menu';
 import { RouterLink } from '@angular/router';
 import { Session } from '../core/session';
-import { Theme, ThemeChoice } from '../core/theme';
+import { Theme, type ThemeChoice } from '../core/theme';
 import { ShortcutList } from './shortcut-list';
 
 const themes: readonly { readonly choice: ThemeChoice; readonly label: string; readonly icon: string }[] = [
@@ -30,7 +30,9 @@ const themes: readonly { readonly choice: ThemeChoice; readonly label: string; r
           <mat-icon svgIcon="theme-system" /><span>Light or dark</span>
         </button>
         <button mat-menu-item type="button" (click)="list.open()"><mat-icon svgIcon="keyboard" /><span>Shortcuts</span></button>
-        <button mat-menu-item type="button" (click)="session.signOut()"><mat-icon svgIcon="sign-out" /><span>Sign out</span></button>
+        <button mat-menu-item type="button" (click)="session.signOut()">
+          <mat-icon svgIcon="sign-out" /><span>Sign out</span>
+        </button>
       </mat-menu>
       <mat-menu #look="matMenu">
         @for (entry of themes; track entry.choice) {

@@ -6,7 +6,10 @@ export class ShortcutList {
   private readonly injector = inject(Injector);
 
   async open(): Promise<void> {
-    const [{ MatDialog }, { ShortcutDialog }] = await Promise.all([import('@angular/material/dialog'), import('./shortcut-dialog')]);
+    const [{ MatDialog }, { ShortcutDialog }] = await Promise.all([
+      import('@angular/material/dialog'),
+      import('./shortcut-dialog'),
+    ]);
     this.injector.get(MatDialog).open(ShortcutDialog, { width: '460px' });
   }
 }

@@ -1,4 +1,4 @@
-import { Component } from '@angular/core';
+import { ChangeDetectionStrategy, Component } from '@angular/core';
 import { TestBed } from '@angular/core/testing';
 import { provideRouter } from '@angular/router';
 import { RouterTestingHarness } from '@angular/router/testing';
@@ -12,9 +12,17 @@ const step = (name: WorkStep['step'], state: WorkStep['state'], caption: string)
   path: `/models/1/${name}`,
 });
 
-@Component({ imports: [WorksRule], template: `<ts-works-rule [steps]="steps" />` })
+@Component({
+  changeDetection: ChangeDetectionStrategy.OnPush,
+  imports: [WorksRule],
+  template: `<ts-works-rule [steps]="steps" />`,
+})
 class Host {
-  readonly steps = [step('sample', 'done', '24 000 rows'), step('binning', 'decision', 'one cut unexplained'), step('fit', 'ahead', 'not begun')];
+  readonly steps = [
+    step('sample', 'done', '24 000 rows'),
+    step('binning', 'decision', 'one cut unexplained'),
+    step('fit', 'ahead', 'not begun'),
+  ];
 }
 
 describe('WorksRule', () => {

@@ -1,5 +1,5 @@
 import { Directive, ElementRef, effect, inject, input } from '@angular/core';
-import { Axis, AxisDomain } from 'd3-axis';
+import { type Axis, type AxisDomain } from 'd3-axis';
 import { select } from 'd3-selection';
 
 /**

@@ -1,4 +1,4 @@
-import { Column, cellText, headerText, sorted } from './column';
+import { type Column, cellText, headerText, sorted } from './column';
 
 interface Row {
   readonly name: string;

@@ -1,4 +1,4 @@
-import { CsvCell } from './csv';
+import { type CsvCell } from './csv';
 import { DASH, count, fixed, metric, moment, points, share, significant, woe } from './numbers';
 
 /** How a column's values are written and aligned; numbers stand right in tabular figures. */

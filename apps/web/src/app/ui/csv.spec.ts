@@ -2,9 +2,16 @@ import { csv, neutralised } from './csv';
 
 describe('csv', () => {
   it('quotes as RFC 4180 asks and keeps numbers at full precision', () => {
-    expect(csv(['bin', 'WOE'], [['a "b", c', 1.113452612345679], [null, Number.NaN], ['two\nlines', -0.5]])).toBe(
-      'bin,WOE\r\n"a ""b"", c",1.113452612345679\r\n,\r\n"two\nlines",-0.5\r\n',
-    );
+    expect(
+      csv(
+        ['bin', 'WOE'],
+        [
+          ['a "b", c', 1.113452612345679],
+          [null, Number.NaN],
+          ['two\nlines', -0.5],
+        ],
+      ),
+    ).toBe('bin,WOE\r\n"a ""b"", c",1.113452612345679\r\n,\r\n"two\nlines",-0.5\r\n');
   });
 
   it.each(['=1+1', '+1', '-1', '@x', '\tx', '\rx', ' =1+1', '\u00a0@x'])('neutralises the text %j', (text) => {

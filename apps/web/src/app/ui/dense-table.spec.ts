@@ -1,7 +1,7 @@
-import { Component, signal } from '@angular/core';
-import { ComponentFixture, TestBed } from '@angular/core/testing';
+import { ChangeDetectionStrategy, Component, signal } from '@angular/core';
+import { type ComponentFixture, TestBed } from '@angular/core/testing';
 import { provideRouter } from '@angular/router';
-import { Column } from './column';
+import { type Column } from './column';
 import { CellTemplate, DenseTable } from './dense-table';
 
 interface Row {
@@ -11,10 +11,20 @@ interface Row {
 }
 
 @Component({
+  changeDetection: ChangeDetectionStrategy.OnPush,
   imports: [DenseTable, CellTemplate],
   template: `
-    <ts-table caption="Attributes" [columns]="columns" [rows]="rows()" [identify]="byId" [activatable]="true" (activate)="opened = $event.id">
-      <ng-template tsCell="name" [tsCellRows]="rows()" let-row><em>{{ row.name }}</em></ng-template>
+    <ts-table
+      caption="Attributes"
+      [columns]="columns"
+      [rows]="rows()"
+      [identify]="byId"
+      [activatable]="true"
+      (activate)="opened = $event.id"
+    >
+      <ng-template tsCell="name" [tsCellRows]="rows()" let-row
+        ><em>{{ row.name }}</em></ng-template
+      >
     </ts-table>
   `,
 })
@@ -70,7 +80,9 @@ describe('DenseTable', () => {
   it('copies what is shown at full precision, formulas made harmless', async () => {
     const write = vi.fn().mockResolvedValue(undefined);
     Object.defineProperty(navigator, 'clipboard', { value: { writeText: write }, configurable: true });
-    const copy = [...element.querySelectorAll<HTMLButtonElement>('.foot button')].find((button) => button.textContent === 'Copy CSV');
+    const copy = [...element.querySelectorAll<HTMLButtonElement>('.foot button')].find(
+      (button) => button.textContent === 'Copy CSV',
+    );
     copy?.click();
     await fixture.whenStable();
     expect(write).toHaveBeenCalledWith("Attribute,Points (whole)\r\nlow,1.25\r\n'=high,41.7512345\r\nmissing,\r\n");

@@ -3,7 +3,7 @@ import {
   ChangeDetectionStrategy,
   Component,
   Directive,
-  ElementRef,
+  type ElementRef,
   TemplateRef,
   computed,
   contentChildren,
@@ -17,7 +17,7 @@ import {
 import { MatButtonModule } from '@angular/material/button';
 import { MatIconModule } from '@angular/material/icon';
 import { RouterLink } from '@angular/router';
-import { Column, cellText, headerText, isNumeric, sorted } from './column';
+import { type Column, cellText, headerText, isNumeric, sorted } from './column';
 import { csv } from './csv';
 import { plural } from './numbers';
 import { fileName, saveFile } from './save-file';

@@ -1,10 +1,10 @@
-import { Component } from '@angular/core';
-import { ComponentFixture, TestBed } from '@angular/core/testing';
+import { ChangeDetectionStrategy, Component } from '@angular/core';
+import { type ComponentFixture, TestBed } from '@angular/core/testing';
 import { TestbedHarnessEnvironment } from '@angular/cdk/testing/testbed';
 import { MatIconTestingModule } from '@angular/material/icon/testing';
 import { MatMenuHarness } from '@angular/material/menu/testing';
 import { provideRouter } from '@angular/router';
-import { Column } from './column';
+import { type Column } from './column';
 import { FigureFrame, FigurePoint } from './figure-frame';
 
 interface Row {
@@ -13,6 +13,7 @@ interface Row {
 }
 
 @Component({
+  changeDetection: ChangeDetectionStrategy.OnPush,
   imports: [FigureFrame, FigurePoint],
   template: `
     <ts-figure title="Bad rate by bin" finding="Risk rises steadily." [table]="{ columns, rows }">
@@ -86,7 +87,10 @@ describe('FigureFrame', () => {
     await fixture.whenStable();
     expect(toggle?.getAttribute('aria-pressed')).toBe('true');
     expect(element.querySelector('svg circle')).toBeNull();
-    expect([...element.querySelectorAll('tbody td')].map((cell) => cell.textContent?.trim())).toEqual(['5.0\u202F%', '35.1\u202F%']);
+    expect([...element.querySelectorAll('tbody td')].map((cell) => cell.textContent?.trim())).toEqual([
+      '5.0\u202F%',
+      '35.1\u202F%',
+    ]);
   });
 
   it('saves the numbers at full precision and the drawing with its title', async () => {

@@ -3,7 +3,7 @@ import {
   Component,
   Directive,
   ElementRef,
-  Signal,
+  type Signal,
   afterRenderEffect,
   computed,
   contentChildren,
@@ -15,7 +15,7 @@ import {
 import { MatButtonModule } from '@angular/material/button';
 import { MatIconModule } from '@angular/material/icon';
 import { MatMenuModule } from '@angular/material/menu';
-import { Column, headerText } from './column';
+import { type Column, headerText } from './column';
 import { csv } from './csv';
 import { DenseTable } from './dense-table';
 import { HEADING_LEVEL } from './heading-level';
@@ -44,6 +44,7 @@ type AnyFigureTable = { readonly columns: readonly Column<never>[]; readonly row
     '[attr.aria-label]': 'tsPoint()',
     '[attr.tabindex]': 'frame.current() === this ? 0 : -1',
     '(focus)': 'frame.reached(this)',
+    '(keydown)': 'frame.move($event)',
     '(mouseenter)': 'frame.hover(this)',
     '(mouseleave)': 'frame.hover(null)',
   },
@@ -119,10 +120,11 @@ export class FigureFrame {
     this.focused.set(null);
   }
 
-  protected move(event: KeyboardEvent): void {
+  /** A key was pressed on the current point. */
+  move(event: KeyboardEvent): void {
     const points = this.points();
     const current = this.current();
-    if (!current || event.target !== current.element) return;
+    if (!current) return;
     const series = points.filter((point) => point.tsPointSeries() === current.tsPointSeries());
     const at = series.indexOf(current);
     const names = [...new Set(points.map((point) => point.tsPointSeries()))];

@@ -27,7 +27,13 @@ export function newPasswordControl(): FormControl<string> {
   template: `
     <mat-form-field>
       <mat-label>{{ label() }}</mat-label>
-      <input matInput [type]="shown() ? 'text' : 'password'" [formControl]="control()" autocomplete="new-password" spellcheck="false" />
+      <input
+        matInput
+        [type]="shown() ? 'text' : 'password'"
+        [formControl]="control()"
+        autocomplete="new-password"
+        spellcheck="false"
+      />
       <button matButton matSuffix type="button" [attr.aria-pressed]="shown()" (click)="shown.set(!shown())">
         {{ shown() ? 'Hide' : 'Show' }}
       </button>

@@ -1,4 +1,4 @@
-import { Pipe, PipeTransform } from '@angular/core';
+import { Pipe, type PipeTransform } from '@angular/core';
 import { bytes, count, day, duration, fixed, metric, moment, points, share, signed, significant, woe } from './numbers';
 
 type Maybe = number | null | undefined;

@@ -40,7 +40,11 @@ export function significant(value: Maybe, digits = 3): string {
   if (value === 0) return '0';
   const size = Math.abs(value);
   if (!Number.isFinite(value)) return fixed(value, 0);
-  if (size < 1e-5 || size >= 1e9) return value.toExponential(digits - 1).replace('e+', 'e').replaceAll('-', MINUS);
+  if (size < 1e-5 || size >= 1e9)
+    return value
+      .toExponential(digits - 1)
+      .replace('e+', 'e')
+      .replaceAll('-', MINUS);
   const decimals = Math.max(0, digits - 1 - Math.floor(Math.log10(size)));
   return fixed(value, Math.min(decimals, 20));
 }

@@ -36,7 +36,12 @@ export function partitionPath(partition: Partition, r: number): string {
     <svg width="18" height="14" viewBox="-9 -7 18 14" aria-hidden="true" focusable="false">
       <path [attr.d]="path()" class="ts-mark" [class]="'ts-mark-' + partition()" />
     </svg>
-    <span>{{ name() }}@if (covered()) {<span class="ts-caption">, covered</span>}</span>
+    <span
+      >{{ name() }}
+      @if (covered()) {
+        <span class="ts-caption">, covered</span>
+      }
+    </span>
   `,
   styles: `
     :host {

@@ -1,5 +1,5 @@
 import { ChangeDetectionStrategy, Component, computed, input } from '@angular/core';
-import { Problem, asProblem } from '../core/http/problem';
+import { type Problem, asProblem } from '../core/http/problem';
 
 /**
  * What went wrong, where, and what to do next: every problem of the input at once. Give it whatever a request rejected with.

@@ -1,4 +1,4 @@
-import { EnvironmentProviders, inject, provideEnvironmentInitializer } from '@angular/core';
+import { type EnvironmentProviders, inject, provideEnvironmentInitializer } from '@angular/core';
 import { MatIconRegistry } from '@angular/material/icon';
 import { DomSanitizer } from '@angular/platform-browser';
 import { iconPaths } from './icons';
@@ -11,7 +11,9 @@ export function provideIcons(): EnvironmentProviders {
     for (const [name, path] of Object.entries(iconPaths)) {
       registry.addSvgIconLiteral(
         name,
-        sanitizer.bypassSecurityTrustHtml(`<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 24 24"><path d="${path}"/></svg>`),
+        sanitizer.bypassSecurityTrustHtml(
+          `<svg xmlns="http://www.w3.org/2000/svg" viewBox="0 0 24 24"><path d="${path}"/></svg>`,
+        ),
       );
     }
   });

@@ -1,6 +1,6 @@
 import { ChangeDetectionStrategy, Component, computed, inject, input, signal } from '@angular/core';
 import { MatButtonModule } from '@angular/material/button';
-import { Run, Runs, hasEnded } from '../core/events/runs';
+import { type Run, Runs, hasEnded } from '../core/events/runs';
 import { duration, share } from './numbers';
 import { ProblemList } from './problem-list';
 
@@ -36,7 +36,11 @@ import { ProblemList } from './problem-list';
           aria-valuemax="100"
           [attr.aria-valuetext]="words()"
         >
-          <div class="come" [class.unknown]="run.share === null" [style.width.%]="run.share === null ? 100 : run.share * 100"></div>
+          <div
+            class="come"
+            [class.unknown]="run.share === null"
+            [style.width.%]="run.share === null ? 100 : run.share * 100"
+          ></div>
         </div>
         <ts-problems [error]="problem()" />
       } @else if (run.state === 'failed') {

@@ -37,7 +37,8 @@ function styled(original: SVGSVGElement): SVGSVGElement {
       if (value) target.setAttribute(property, value);
     }
     for (const name of ['class', 'tabindex', 'style', 'aria-live']) target.removeAttribute(name);
-    for (const { name } of [...target.attributes]) if (name.startsWith('_ng') || name.startsWith('ng-')) target.removeAttribute(name);
+    for (const { name } of [...target.attributes])
+      if (name.startsWith('_ng') || name.startsWith('ng-')) target.removeAttribute(name);
   });
   return copy;
 }

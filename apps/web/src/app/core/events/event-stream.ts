@@ -1,6 +1,6 @@
 import { Injectable, InjectionToken, inject, signal } from '@angular/core';
 import { Observable, defer, filter, map, retry, share, tap, timer } from 'rxjs';
-import { EventParser, StreamMessage } from './event-parser';
+import { EventParser, type StreamMessage } from './event-parser';
 
 /** How the stream is read; a browser's fetch, or a test's. */
 export const STREAM_FETCH = new InjectionToken<typeof fetch>('how the event stream is fetched', {

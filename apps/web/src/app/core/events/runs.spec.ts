@@ -4,7 +4,7 @@ import { TestBed } from '@angular/core/testing';
 import { provideRouter } from '@angular/router';
 import { Session } from '../session';
 import { EventStream, STREAM_FETCH } from './event-stream';
-import { Run, Runs } from './runs';
+import { type Run, Runs } from './runs';
 
 const run = (change: Partial<Run> = {}): Run => ({
   id: 'r1',
@@ -71,7 +71,16 @@ describe('Runs', () => {
     runs.finished.subscribe((entry) => ended.push(entry));
     const live = runs.run(() => 'r1');
     expect(live()?.share).toBe(0.2);
-    const event = { runId: 'r1', kind: 'fit.path', attempt: 1, modelId: 'm1', entity: 'fit', entityId: 'f1', problem: null, at: '' };
+    const event = {
+      runId: 'r1',
+      kind: 'fit.path',
+      attempt: 1,
+      modelId: 'm1',
+      entity: 'fit',
+      entityId: 'f1',
+      problem: null,
+      at: '',
+    };
     send(`id: 1\nevent: run\ndata: ${JSON.stringify({ ...event, state: 'running', phase: 'path', share: 0.6 })}\n\n`);
     await settle();
     expect(live()).toMatchObject({ phase: 'path', share: 0.6, startedBy: 'Modeller' });
@@ -93,7 +102,9 @@ describe('Runs', () => {
     await vi.advanceTimersByTimeAsync(3000);
     server.expectOne('/api/runs?active=true').flush({ runs: [] });
     await settle();
-    server.expectOne('/api/runs/r1').flush(run({ state: 'failed', problem: { code: 'memory', message: 'Out of memory', where: {} } }));
+    server
+      .expectOne('/api/runs/r1')
+      .flush(run({ state: 'failed', problem: { code: 'memory', message: 'Out of memory', where: {} } }));
     await settle();
     expect(ended.map((entry) => entry.problem?.code)).toEqual(['memory']);
   });

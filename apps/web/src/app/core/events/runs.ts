@@ -1,8 +1,19 @@
 import { HttpClient } from '@angular/common/http';
-import { DestroyRef, Injectable, Signal, computed, effect, inject, signal } from '@angular/core';
+import { DestroyRef, Injectable, type Signal, computed, effect, inject, signal } from '@angular/core';
 import { takeUntilDestroyed } from '@angular/core/rxjs-interop';
 import type { Run, RunEvent } from '@tallystone/contracts/runs/schema';
-import { EMPTY, Observable, Subject, catchError, concatMap, exhaustMap, filter, firstValueFrom, interval, switchMap } from 'rxjs';
+import {
+  EMPTY,
+  type Observable,
+  Subject,
+  catchError,
+  concatMap,
+  exhaustMap,
+  filter,
+  firstValueFrom,
+  interval,
+  switchMap,
+} from 'rxjs';
 import { Session } from '../session';
 import { EventStream } from './event-stream';
 

@@ -1,5 +1,5 @@
-import { HttpClient, HttpHeaders, HttpResponse } from '@angular/common/http';
-import { Observable, map } from 'rxjs';
+import { type HttpClient, HttpHeaders, type HttpResponse } from '@angular/common/http';
+import { type Observable, map } from 'rxjs';
 import { Problem } from './problem';
 
 /** Something people edit, with the tag of the state that was read; the tag goes back as If-Match when it is saved. */

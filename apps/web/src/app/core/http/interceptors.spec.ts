@@ -73,7 +73,9 @@ describe('requests', () => {
     const { value, etag } = await reading;
     expect(value.name).toBe('A');
 
-    const saving = firstValueFrom(saveTagged(http, 'PATCH', '/api/models/1', { name: 'B' }, etag)).catch((error: unknown) => error);
+    const saving = firstValueFrom(saveTagged(http, 'PATCH', '/api/models/1', { name: 'B' }, etag)).catch(
+      (error: unknown) => error,
+    );
     const request = server.expectOne({ method: 'PATCH', url: '/api/models/1' });
     expect(request.request.headers.get('If-Match')).toBe('"7"');
     request.flush({ title: 'Stale', code: 'stale' }, { status: 412, statusText: 'Precondition Failed' });

@@ -1,4 +1,4 @@
-import { Routes } from '@angular/router';
+import { type Routes } from '@angular/router';
 
 export const peopleRoutes: Routes = [
   { path: '', title: 'People', loadComponent: () => import('./pages/people-page').then((m) => m.PeoplePage) },

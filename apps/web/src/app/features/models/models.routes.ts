@@ -1,4 +1,4 @@
-import { Routes } from '@angular/router';
+import { type Routes } from '@angular/router';
 import { keepsUnsavedWork } from '../../core/unsaved-changes';
 
 /** The inventory: all models one may see, and entering a new one. */

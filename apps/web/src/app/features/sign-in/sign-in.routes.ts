@@ -1,4 +1,4 @@
-import { Routes } from '@angular/router';
+import { type Routes } from '@angular/router';
 
 /** The ways in: for those with an account, for the first admin, for the invited. */
 export const signInRoutes: Routes = [

@@ -1,5 +1,5 @@
 import { ChangeDetectionStrategy, Component, computed, inject, signal } from '@angular/core';
-import { FormGroupDirective, NonNullableFormBuilder, ReactiveFormsModule, Validators } from '@angular/forms';
+import { type FormGroupDirective, NonNullableFormBuilder, ReactiveFormsModule, Validators } from '@angular/forms';
 import { MatButtonModule } from '@angular/material/button';
 import { MatButtonToggleModule } from '@angular/material/button-toggle';
 import { MatCheckboxModule } from '@angular/material/checkbox';
@@ -13,7 +13,7 @@ import { NewPassword, newPasswordControl } from '../../../ui/new-password';
 import { MomentPipe } from '../../../ui/number-pipes';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
-import { OwnAccount, OwnSession, ownSessions } from '../data/own-account';
+import { OwnAccount, type OwnSession, ownSessions } from '../data/own-account';
 
 /** One's own account: who one is, where one is signed in, the password, light or dark. Roles are given by an admin, never by oneself. */
 @Component({

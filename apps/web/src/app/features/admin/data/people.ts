@@ -1,6 +1,9 @@
-import { HttpClient, HttpResourceRef, httpResource } from '@angular/common/http';
+import { HttpClient, type HttpResourceRef, httpResource } from '@angular/common/http';
 import { Injectable, inject } from '@angular/core';
-import type { Invitation as InvitationSchema, InvitationList as InvitationListSchema } from '@tallystone/contracts/invitations/schema';
+import type {
+  Invitation as InvitationSchema,
+  InvitationList as InvitationListSchema,
+} from '@tallystone/contracts/invitations/schema';
 import type { Person, PersonList as PersonListSchema, Role } from '@tallystone/contracts/people/schema';
 import type { z } from 'zod';
 import { firstValueFrom } from 'rxjs';
@@ -36,7 +39,13 @@ export class People {
 
   /** Changes the roles of the person as last read: when someone else changed them since, the server answers 412. */
   async changeRoles(person: Person, roles: readonly Role[], reason: string): Promise<Person> {
-    const saved = saveTagged<Person>(this.http, 'PUT', `/api/people/${person.id}/roles`, { roles, reason }, `"${person.revision}"`);
+    const saved = saveTagged<Person>(
+      this.http,
+      'PUT',
+      `/api/people/${person.id}/roles`,
+      { roles, reason },
+      `"${person.revision}"`,
+    );
     return (await firstValueFrom(saved)).value;
   }
 

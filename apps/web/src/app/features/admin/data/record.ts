@@ -1,4 +1,4 @@
-import { HttpClient, HttpResourceRef, httpResource } from '@angular/common/http';
+import { HttpClient, type HttpResourceRef, httpResource } from '@angular/common/http';
 import { Injectable, inject } from '@angular/core';
 import type {
   RecordEntry,

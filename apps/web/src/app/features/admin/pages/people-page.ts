@@ -5,16 +5,16 @@ import { firstValueFrom } from 'rxjs';
 import { Session } from '../../../core/session';
 import { Task } from '../../../core/task';
 import { Ask } from '../../../ui/ask';
-import { Column } from '../../../ui/column';
+import { type Column } from '../../../ui/column';
 import { CellTemplate, DenseTable } from '../../../ui/dense-table';
 import { plural } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
-import { StatusMark, StatusTone } from '../../../ui/status-mark';
-import { Invitation, People, Person, invitationList, peopleList } from '../data/people';
-import { InviteDialog, InviteQuestion } from '../ui/invite-dialog';
+import { StatusMark, type StatusTone } from '../../../ui/status-mark';
+import { type Invitation, People, type Person, invitationList, peopleList } from '../data/people';
+import { InviteDialog, type InviteQuestion } from '../ui/invite-dialog';
 import { rolesText } from '../ui/roles';
-import { RolesDialog, RolesQuestion } from '../ui/roles-dialog';
+import { RolesDialog, type RolesQuestion } from '../ui/roles-dialog';
 
 const personColumns: readonly Column<Person>[] = [
   { key: 'name', label: 'Name', value: (row) => row.name, sortable: true },
@@ -80,14 +80,25 @@ const invitationTones: Readonly<Record<Invitation['state'], StatusTone>> = {
       @if (openInvitations().length > 0) {
         <div>
           <h2>Invitations</h2>
-          <ts-table caption="Invitations" [columns]="invitationColumns" [rows]="openInvitations()" [identify]="byInvitation" [copyable]="false">
+          <ts-table
+            caption="Invitations"
+            [columns]="invitationColumns"
+            [rows]="openInvitations()"
+            [identify]="byInvitation"
+            [copyable]="false"
+          >
             <ng-template tsCell="state" [tsCellRows]="openInvitations()" let-row>
               <ts-status [tone]="tones[row.state]">{{ row.state }}</ts-status>
             </ng-template>
             <ng-template tsCell="acts" [tsCellRows]="openInvitations()" let-row>
               @if (row.state === 'open') {
                 <span class="acts">
-                  <button matButton type="button" [attr.aria-label]="'Withdraw the invitation of ' + row.name" (click)="withdraw(row)">
+                  <button
+                    matButton
+                    type="button"
+                    [attr.aria-label]="'Withdraw the invitation of ' + row.name"
+                    (click)="withdraw(row)"
+                  >
                     Withdraw
                   </button>
                 </span>

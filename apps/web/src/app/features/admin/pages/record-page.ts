@@ -13,8 +13,8 @@ import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { StatusMark } from '../../../ui/status-mark';
-import { RecordFilter, RecordOfActions, RecordVerification, recordHead, recordPage } from '../data/record';
-import { actionWords, changedFields, notedFields } from '../ui/entry-words';
+import { type RecordFilter, RecordOfActions, type RecordVerification, recordHead, recordPage } from '../data/record';
+import { actionWords, changedFields, notedFields, saysWhatChanged } from '../ui/entry-words';
 
 const narrowings = ['action', 'entity', 'entityId', 'modelId', 'actorId'] as const;
 type Narrowing = (typeof narrowings)[number];
@@ -107,6 +107,7 @@ export class RecordPage {
   protected readonly actionWords = actionWords;
   protected readonly changedFields = changedFields;
   protected readonly notedFields = notedFields;
+  protected readonly saysWhatChanged = saysWhatChanged;
 
   constructor() {
     // A verification is itself recorded: read the page and the head again.

@@ -26,6 +26,11 @@ export function changedFields(before: unknown, after: unknown): ChangedField[] {
   });
 }
 
+/** True when an act says what was there before or after. */
+export function saysWhatChanged(entry: Pick<RecordEntry, 'before' | 'after'>): boolean {
+  return (entry.before ?? entry.after ?? null) !== null;
+}
+
 /** What an act noted beside it: address, kind, counts. */
 export function notedFields(entry: Pick<RecordEntry, 'detail'>): { readonly field: string; readonly value: string }[] {
   return [...flat(entry.detail)].map(([field, value]) => ({ field, value }));
@@ -40,7 +45,7 @@ function flat(value: unknown): Map<string, string> {
 function text(value: unknown): string {
   if (value === null || value === undefined || value === '') return 'none';
   if (Array.isArray(value)) return value.length === 0 ? 'none' : value.map(text).join(', ');
-  return typeof value === 'object' ? JSON.stringify(value) : String(value);
+  return typeof value === 'string' ? value : JSON.stringify(value);
 }
 
 /** "materialityTier" reads "materiality tier". */

@@ -51,7 +51,10 @@ export class RolesDialog {
   protected readonly question = inject<RolesQuestion>(MAT_DIALOG_DATA);
   private readonly reference = inject<MatDialogRef<RolesDialog, boolean>>(MatDialogRef);
   protected readonly roles = signal<readonly Role[]>(this.question.roles);
-  protected readonly reason = new FormControl('', { nonNullable: true, validators: [Validators.required, Validators.pattern(/\S/)] });
+  protected readonly reason = new FormControl('', {
+    nonNullable: true,
+    validators: [Validators.required, Validators.pattern(/\S/)],
+  });
   protected readonly task = new Task();
 
   protected submit(event: Event): void {

@@ -1,8 +1,8 @@
-import { HttpClient, HttpResourceRef, httpResource } from '@angular/common/http';
+import { HttpClient, type HttpResourceRef, httpResource } from '@angular/common/http';
 import { Injectable, inject } from '@angular/core';
 import type { MemberCandidates, Model, ModelEdit, ModelFields, ModelList } from '@tallystone/contracts/models/schema';
 import { firstValueFrom } from 'rxjs';
-import { Tagged, readTagged, saveTagged } from '../../../core/http/etag';
+import { type Tagged, readTagged, saveTagged } from '../../../core/http/etag';
 
 export type { Model, ModelFields };
 export type ModelSummary = ModelList['models'][number];

@@ -4,16 +4,16 @@ import { ReactiveFormsModule } from '@angular/forms';
 import { MatButtonModule } from '@angular/material/button';
 import { MatFormFieldModule } from '@angular/material/form-field';
 import { MatSelectModule } from '@angular/material/select';
-import { CurrentModel, Model } from '../../../core/current-model';
+import { CurrentModel, type Model } from '../../../core/current-model';
 import { isStale } from '../../../core/http/etag';
 import { Task } from '../../../core/task';
-import { HoldsWork, warnBeforeUnload } from '../../../core/unsaved-changes';
+import { type HoldsWork, warnBeforeUnload } from '../../../core/unsaved-changes';
 import { Ask } from '../../../ui/ask';
 import { DecisionNotice } from '../../../ui/decision-notice';
 import { DayPipe, MomentPipe } from '../../../ui/number-pipes';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
-import { ModelFields, Models } from '../data/inventory';
+import { type ModelFields, Models } from '../data/inventory';
 import { ModelFormFields, modelForm } from '../ui/model-form';
 
 export const fieldNames: Readonly<Record<keyof ModelFields, string>> = {
@@ -101,7 +101,9 @@ export class AboutPage implements HoldsWork {
   protected readonly saving = new Task();
   protected readonly membership = new Task();
   protected readonly clashes = signal<readonly Clash[]>([]);
-  protected readonly candidates = signal<readonly { readonly id: string; readonly name: string; readonly email: string }[] | null>(null);
+  protected readonly candidates = signal<
+    readonly { readonly id: string; readonly name: string; readonly email: string }[] | null
+  >(null);
   protected readonly chosen = signal<string | null>(null);
   protected readonly form = modelForm();
   readonly unsaved = signal(false);

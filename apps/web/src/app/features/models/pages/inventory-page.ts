@@ -7,14 +7,14 @@ import { Router, RouterLink } from '@angular/router';
 import { takeUntilDestroyed } from '@angular/core/rxjs-interop';
 import { Subject, debounceTime } from 'rxjs';
 import { Session } from '../../../core/session';
-import { Column } from '../../../ui/column';
-import { CellTemplate, DenseTable, TableSort } from '../../../ui/dense-table';
+import { type Column } from '../../../ui/column';
+import { CellTemplate, DenseTable, type TableSort } from '../../../ui/dense-table';
 import { EmptyState } from '../../../ui/empty-state';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { StatusMark } from '../../../ui/status-mark';
 import { modelStates, stateTone } from '../../../ui/version-state';
-import { ModelSummary, inventory } from '../data/inventory';
+import { type ModelSummary, inventory } from '../data/inventory';
 import { inventoryFinding } from '../ui/inventory-finding';
 
 const columns: readonly Column<ModelSummary>[] = [

@@ -4,10 +4,10 @@ import { MatButtonModule } from '@angular/material/button';
 import { Router, RouterLink } from '@angular/router';
 import { takeUntilDestroyed } from '@angular/core/rxjs-interop';
 import { Task } from '../../../core/task';
-import { HoldsWork, warnBeforeUnload } from '../../../core/unsaved-changes';
+import { type HoldsWork, warnBeforeUnload } from '../../../core/unsaved-changes';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
-import { ModelFields, Models } from '../data/inventory';
+import { type ModelFields, Models } from '../data/inventory';
 import { ModelFormFields, modelForm } from '../ui/model-form';
 
 /** Enters a model in the inventory; whoever enters it is its first member. */

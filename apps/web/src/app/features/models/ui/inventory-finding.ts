@@ -7,7 +7,9 @@ export function inventoryFinding(models: readonly { readonly state: ModelState }
   if (models.length === 0) return filtered ? 'No model fits this search.' : 'No model has been entered yet.';
   const counts = new Map<ModelState, number>();
   for (const { state } of models) counts.set(state, (counts.get(state) ?? 0) + 1);
-  const parts = modelStates.filter((state) => counts.has(state)).map((state) => `${count(counts.get(state))} ${state.toLowerCase()}`);
+  const parts = modelStates
+    .filter((state) => counts.has(state))
+    .map((state) => `${count(counts.get(state))} ${state.toLowerCase()}`);
   const found = filtered ? ' found' : '';
   if (parts.length === 1) {
     const state = parts[0].slice(parts[0].indexOf(' ') + 1);

@@ -6,8 +6,12 @@ import { MatRadioModule } from '@angular/material/radio';
 import type { ModelFields } from '@tallystone/contracts/models/schema';
 
 const line = (most: number): FormControl<string> =>
-  new FormControl('', { nonNullable: true, validators: [Validators.required, Validators.pattern(/\S/), Validators.maxLength(most)] });
-const text = (most: number): FormControl<string> => new FormControl('', { nonNullable: true, validators: [Validators.maxLength(most)] });
+  new FormControl('', {
+    nonNullable: true,
+    validators: [Validators.required, Validators.pattern(/\S/), Validators.maxLength(most)],
+  });
+const text = (most: number): FormControl<string> =>
+  new FormControl('', { nonNullable: true, validators: [Validators.maxLength(most)] });
 
 export type ModelForm = FormGroup<{
   [K in keyof ModelFields]: FormControl<K extends 'materialityTier' ? ModelFields['materialityTier'] | null : string>;
@@ -25,7 +29,7 @@ export function modelForm(): ModelForm {
     materialityTier: new FormControl<ModelFields['materialityTier'] | null>(null, Validators.required),
     intendedUse: text(4000),
     prohibitedUse: text(4000),
-  }) as ModelForm;
+  });
 }
 
 export const tiers: readonly { readonly tier: ModelFields['materialityTier']; readonly text: string }[] = [

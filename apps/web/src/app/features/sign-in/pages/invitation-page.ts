@@ -1,4 +1,4 @@
-import { ChangeDetectionStrategy, Component, OnInit, inject, input, signal } from '@angular/core';
+import { ChangeDetectionStrategy, Component, type OnInit, inject, input, signal } from '@angular/core';
 import { NonNullableFormBuilder, ReactiveFormsModule, Validators } from '@angular/forms';
 import { MatButtonModule } from '@angular/material/button';
 import { MatFormFieldModule } from '@angular/material/form-field';
@@ -32,7 +32,15 @@ import { Doorway } from '../ui/doorway';
             <dd>{{ expires() | tsDay }}</dd>
           </dl>
           <!-- For password managers, which want to know whose password this is. -->
-          <input class="ts-hidden" type="text" autocomplete="username" tabindex="-1" aria-hidden="true" readonly [value]="email()" />
+          <input
+            class="ts-hidden"
+            type="text"
+            autocomplete="username"
+            tabindex="-1"
+            aria-hidden="true"
+            readonly
+            [value]="email()"
+          />
           <mat-form-field>
             <mat-label>Your name</mat-label>
             <input matInput formControlName="name" autocomplete="name" />

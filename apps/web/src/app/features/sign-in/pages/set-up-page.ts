@@ -15,9 +15,21 @@ import { Doorway } from '../ui/doorway';
 @Component({
   selector: 'ts-set-up-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
-  imports: [ReactiveFormsModule, RouterLink, MatButtonModule, MatFormFieldModule, MatInputModule, Doorway, NewPassword, ProblemList],
+  imports: [
+    ReactiveFormsModule,
+    RouterLink,
+    MatButtonModule,
+    MatFormFieldModule,
+    MatInputModule,
+    Doorway,
+    NewPassword,
+    ProblemList,
+  ],
   template: `
-    <ts-doorway title="Set Tallystone up" text="The first account is an admin’s: it invites everyone else and approves nothing itself.">
+    <ts-doorway
+      title="Set Tallystone up"
+      text="The first account is an admin’s: it invites everyone else and approves nothing itself."
+    >
       @if (open() === false) {
         <p>The first account exists already, so this page has done its work.</p>
         <div class="ts-actions"><a matButton="filled" routerLink="/sign-in">Sign in</a></div>
@@ -36,12 +48,21 @@ import { Doorway } from '../ui/doorway';
           </mat-form-field>
           <mat-form-field>
             <mat-label>E-mail address</mat-label>
-            <input matInput type="email" formControlName="email" autocomplete="username" autocapitalize="none" spellcheck="false" />
+            <input
+              matInput
+              type="email"
+              formControlName="email"
+              autocomplete="username"
+              autocapitalize="none"
+              spellcheck="false"
+            />
             <mat-error>Give an e-mail address.</mat-error>
           </mat-form-field>
           <ts-new-password [control]="form.controls.password" />
           <ts-problems [error]="task.error()" />
-          <div class="ts-actions"><button matButton="filled" type="submit" [disabled]="task.busy()">Open the first account</button></div>
+          <div class="ts-actions">
+            <button matButton="filled" type="submit" [disabled]="task.busy()">Open the first account</button>
+          </div>
         </form>
       }
     </ts-doorway>

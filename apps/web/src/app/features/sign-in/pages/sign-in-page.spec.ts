@@ -1,8 +1,8 @@
-import { HarnessLoader } from '@angular/cdk/testing';
+import { type HarnessLoader } from '@angular/cdk/testing';
 import { TestbedHarnessEnvironment } from '@angular/cdk/testing/testbed';
 import { provideHttpClient, withInterceptors } from '@angular/common/http';
 import { HttpTestingController, provideHttpClientTesting } from '@angular/common/http/testing';
-import { Component } from '@angular/core';
+import { ChangeDetectionStrategy, Component } from '@angular/core';
 import { TestBed } from '@angular/core/testing';
 import { MatButtonHarness } from '@angular/material/button/testing';
 import { MatFormFieldHarness } from '@angular/material/form-field/testing';
@@ -12,7 +12,7 @@ import { RouterTestingHarness } from '@angular/router/testing';
 import { problemInterceptor, signedOutInterceptor } from '../../../core/http/interceptors';
 import { SignInPage } from './sign-in-page';
 
-@Component({ template: 'elsewhere' })
+@Component({ changeDetection: ChangeDetectionStrategy.OnPush, template: 'elsewhere' })
 class Elsewhere {}
 
 const nobody = { user: null, abilities: [], demo: false };
@@ -82,10 +82,15 @@ describe('SignInPage', () => {
     await submit('modeller@saltmarsh.example', 'wrong');
     server
       .expectOne({ method: 'POST', url: '/api/session' })
-      .flush({ title: 'Not signed in', code: 'wrong', detail: 'E-mail address or password is wrong.', problems: [] }, { status: 401, statusText: '' });
+      .flush(
+        { title: 'Not signed in', code: 'wrong', detail: 'E-mail address or password is wrong.', problems: [] },
+        { status: 401, statusText: '' },
+      );
     await settled();
     expect(text()).toContain('E-mail address or password is wrong.');
-    expect(await (await loader.getHarness(MatInputHarness.with({ selector: '[type=email]' }))).getValue()).toBe('modeller@saltmarsh.example');
+    expect(await (await loader.getHarness(MatInputHarness.with({ selector: '[type=email]' }))).getValue()).toBe(
+      'modeller@saltmarsh.example',
+    );
     expect(await (await loader.getHarness(MatInputHarness.with({ selector: '[type=password]' }))).getValue()).toBe('');
   });
 

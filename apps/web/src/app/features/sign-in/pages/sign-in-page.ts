@@ -16,7 +16,12 @@ import { Doorway } from '../ui/doorway';
   changeDetection: ChangeDetectionStrategy.OnPush,
   imports: [ReactiveFormsModule, RouterLink, MatButtonModule, MatFormFieldModule, MatInputModule, Doorway, ProblemList],
   template: `
-    <ts-doorway title="Sign in" [text]="ended() ? 'Your session has ended. Sign in again to go on where you were.' : welcome() ? 'Your account is ready.' : null">
+    <ts-doorway
+      title="Sign in"
+      [text]="
+        ended() ? 'Your session has ended. Sign in again to go on where you were.' : welcome() ? 'Your account is ready.' : null
+      "
+    >
       <form class="ts-form" [formGroup]="form" (ngSubmit)="submit()">
         <mat-form-field>
           <mat-label>E-mail address</mat-label>

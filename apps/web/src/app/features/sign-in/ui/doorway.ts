@@ -19,7 +19,10 @@ import { Mark } from '../../../ui/mark';
     </main>
     <div class="picture" aria-hidden="true">
       <svg viewBox="0 0 560 206" focusable="false">
-        <path class="half" d="M0 0h560v76h-64l-17 28-17-28h-74l-17 28-17-28h-26l-17 28-17-28H190l-17 28-17-28h-26l-17 28-17-28H0z" />
+        <path
+          class="half"
+          d="M0 0h560v76h-64l-17 28-17-28h-74l-17 28-17-28h-26l-17 28-17-28H190l-17 28-17-28h-26l-17 28-17-28H0z"
+        />
         <path
           class="other"
           d="M1 205h558v-94h-63l-17 28-17-28h-74l-17 28-17-28h-26l-17 28-17-28H190l-17 28-17-28h-26l-17 28-17-28H1z"
