@@ -7,6 +7,8 @@ import { Frame } from './shell/frame';
  * the steps are children of the model's frame. `modelId` reaches every page below it as an input.
  */
 export const routes: Routes = [
+  // Before the ways in: their routes have an empty path as well, and would answer the bare address with an empty page.
+  { path: '', pathMatch: 'full', redirectTo: 'models' },
   { path: '', loadChildren: () => import('./features/sign-in/sign-in.routes').then((m) => m.signInRoutes) },
   { path: 'unreachable', title: 'Unreachable', loadComponent: () => import('./shell/start-failed').then((m) => m.StartFailed) },
   {
