@@ -16,8 +16,11 @@ const loopback = /^(localhost|127\.0\.0\.1|\[::1\])(:\d+)?$/i;
  * session to bind to and it is bound to nobody; then Origin and the equality of cookie and header carry the weight.
  */
 export function issueToken(config: Config, request: Request, response: Response, signedIn: boolean): void {
+  const session = signedIn ? request.sessionID : '';
+  // One that still fits is kept: another page of this browser may be about to send it.
+  if (fits(config, session, cookieOf(request, tokenCookie) ?? '')) return;
   const nonce = randomBytes(16).toString('base64url');
-  response.cookie(tokenCookie, `${nonce}.${sealOf(config, signedIn ? request.sessionID : '', nonce)}`, {
+  response.cookie(tokenCookie, `${nonce}.${sealOf(config, session, nonce)}`, {
     path: '/',
     sameSite: 'lax',
     secure: isHttps(config),
@@ -39,9 +42,13 @@ export function checkCrossSite(config: Config, request: Request, signedIn: boole
   const header = request.headers[tokenHeader];
   const cookie = cookieOf(request, tokenCookie);
   if (typeof header !== 'string' || cookie === null || header !== cookie) throw crossSite();
-  const [nonce, seal] = header.split('.');
-  const expected = sealOf(config, signedIn ? request.sessionID : '', nonce);
-  if (seal === undefined || seal.length !== expected.length || !timingSafeEqual(Buffer.from(seal), Buffer.from(expected))) throw crossSite();
+  if (!fits(config, signedIn ? request.sessionID : '', header)) throw crossSite();
+}
+
+function fits(config: Config, session: string, token: string): boolean {
+  const [nonce, seal] = token.split('.');
+  const expected = Buffer.from(sealOf(config, session, nonce));
+  return seal !== undefined && Buffer.byteLength(seal) === expected.length && timingSafeEqual(Buffer.from(seal), expected);
 }
 
 export const isHttps = (config: Config): boolean => config.origin?.startsWith('https:') ?? false;
