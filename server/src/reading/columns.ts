@@ -5,13 +5,14 @@ import type { ColumnSegment, RawColumn, ReadFile, ReadingChoices, ReadingOptions
 
 export interface ColumnOptions extends ReadingOptions {
   /**
-   * Columns that are used as numbers and never as text. With more than 65,536 distinct texts such a column is kept as numbers
+   * Columns that are used as numbers and never as text. With more than 4,096 distinct texts such a column is kept as numbers
    * (8 bytes a row) in place of its texts; the others keep every distinct text.
    */
   numbers?: { columns: ReadonlySet<string>; format: NumberFormat };
 }
 
-const MOST_DISTINCT = 0x1_0000;
+/** A column of numbers with more distinct texts than this gains nothing from a dictionary. */
+const MOST_DISTINCT = 4096;
 
 /**
  * Reads a raw file into whole columns in memory, typed afterwards. For files whose columns do not all fit, read segments.

@@ -1,4 +1,5 @@
 import { createHash } from 'node:crypto';
+import { ColumnBuilder, detached } from './dictionary';
 import { byteOrderMark, decoderOf, ENCODING_NAMES, signatureProblem } from './encodings';
 import { headerProblems } from './header';
 import { ProblemBook } from './problem-book';
@@ -113,48 +114,6 @@ async function* read(
     book.add(problem);
     finish();
   }
-}
-
-/** Codes one column's texts by a dictionary that starts anew with every segment. */
-class ColumnBuilder {
-  private readonly places = new Map<string, number>();
-  private texts: string[] = [];
-  private codes: Uint32Array;
-
-  constructor(private readonly capacity: number) {
-    this.codes = new Uint32Array(Math.min(capacity, 1024));
-  }
-
-  set(row: number, text: string): void {
-    let code = this.places.get(text);
-    if (code === undefined) {
-      code = this.texts.length;
-      const kept = detached(text);
-      this.places.set(kept, code);
-      this.texts.push(kept);
-    }
-    if (row >= this.codes.length) {
-      const wider = new Uint32Array(Math.min(this.capacity, this.codes.length * 4));
-      wider.set(this.codes);
-      this.codes = wider;
-    }
-    this.codes[row] = code;
-  }
-
-  take(rows: number): Segment['columns'][number] {
-    const { texts } = this;
-    const from = this.codes.subarray(0, rows);
-    const codes =
-      texts.length <= 0x100 ? Uint8Array.from(from) : texts.length <= 0x1_0000 ? Uint16Array.from(from) : from.slice();
-    this.places.clear();
-    this.texts = [];
-    return { codes, texts };
-  }
-}
-
-/** A copy that does not hold on to the chunk it was cut from. (Engines copy short pieces anyway.) */
-function detached(text: string): string {
-  return text.length < 13 ? text : Buffer.from(text, 'utf16le').toString('utf16le');
 }
 
 class SegmentBuilder implements RecordSink {

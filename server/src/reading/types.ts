@@ -73,7 +73,7 @@ export type RawColumn = { name: string; position: number } & (
       texts: string[];
     }
   | {
-      /** More than 65,536 distinct texts, all but `exceptions` of them numbers whose spelling carries nothing more. */
+      /** A column used as numbers only, with more than 4,096 distinct texts; `exceptions` are the texts that are no numbers. */
       kind: 'numbers';
       /** NaN where `exceptions` has the text, or where the field is empty. */
       values: Float64Array;
