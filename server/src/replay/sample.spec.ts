@@ -1,0 +1,262 @@
+import { createHash } from 'node:crypto';
+import { describe, expect, it } from 'vitest';
+import { codeCharacteristics } from './coding';
+import { inventedSample, specificationOf, sourceOfSample, type Sample } from './invented-sample';
+import { prepare } from './prepare';
+import { ReplayError } from './problems';
+import { sourceOf, type ColumnSource } from './source';
+import { BAD, DEVELOPMENT, GOOD, HOLD_OUT, NO_BIN, OUT_OF_TIME } from './types';
+
+const sha = (text: string): string => createHash('sha256').update(text, 'utf8').digest('hex');
+const sample = inventedSample(900);
+const source = sourceOfSample(sample);
+
+function problemsOf(work: () => unknown): ReplayError['problems'] {
+  try {
+    work();
+  } catch (error) {
+    if (error instanceof ReplayError) return error.problems;
+    throw error;
+  }
+  throw new Error('nothing was refused');
+}
+
+describe('exclusions', () => {
+  const small: Sample = {
+    age: ['17', '25', '', '40', 'NA', '-999'],
+    channel: ['staff', 'web', 'staff', 'web', 'branch', 'web'],
+    day: ['2025-01-01', '2025-06-01', '', '2025-12-31T10:00', '2025-07-01', '2024-02-29'],
+    bad: ['1', '0', '0', '1', '0', '1'],
+    part: ['d', 'd', 'd', 'd', 'd', 'd'],
+  };
+  const taken = (exclusions: object[]): number[] => {
+    const definition = specificationOf({ exclusions, partition: { column: 'part', development: ['d'] } });
+    return Array.from(prepare(definition, sourceOf(small), { allowUnfittable: true }).exclusion);
+  };
+
+  it('take a row out at the first rule that matches, and count its bads', () => {
+    const exclusions = [
+      { reason: 'staff', column: 'channel', in: ['staff'] },
+      { reason: 'young', column: 'age', below: 18 },
+      { reason: 'no age', column: 'age', missing: true },
+    ];
+    expect(taken(exclusions)).toEqual([1, 0, 1, 0, 3, 2]);
+    const spec = specificationOf({ exclusions, partition: { column: 'part', development: ['d'] } });
+    expect(prepare(spec, sourceOf(small)).counts.excluded).toEqual([
+      { reason: 'staff', rows: 2, bads: 1 },
+      { reason: 'young', rows: 1, bads: 1 },
+      { reason: 'no age', rows: 1, bads: 0 },
+    ]);
+  });
+
+  it('combine tests, and a missing value passes none but its own', () => {
+    expect(
+      taken([
+        {
+          reason: 'x',
+          any: [
+            { column: 'age', atLeast: 40 },
+            {
+              all: [
+                { column: 'channel', in: ['staff'] },
+                { column: 'age', missing: false },
+              ],
+            },
+          ],
+        },
+      ]),
+    ).toEqual([1, 0, 0, 1, 0, 0]);
+    expect(taken([{ reason: 'x', column: 'age', notIn: ['17'] }])).toEqual([0, 1, 0, 1, 0, 1]);
+    expect(taken([{ reason: 'x', column: 'age', above: 17, atMost: 25 }])).toEqual([0, 1, 0, 0, 0, 0]);
+    expect(taken([{ reason: 'x', column: 'day', atLeast: '2025-06-01', below: '2025-12-31' }])).toEqual([0, 1, 0, 0, 1, 0]);
+  });
+
+  it('refuse to compare what is not comparable, naming values and counts', () => {
+    const [problem] = problemsOf(() => taken([{ reason: 'x', column: 'channel', below: 3 }]));
+    expect(problem).toMatchObject({ code: 'not-comparable', where: { column: 'channel', count: 6 } });
+    expect(problem.where.values?.[0]).toEqual({ value: 'web', rows: 3 });
+  });
+});
+
+describe('outcome, weight and partition', () => {
+  it('report every problem of all steps at once, with values and counts', () => {
+    const broken = {
+      ...sample,
+      bad: sample['bad'].map((value, row) => (row < 5 ? '' : row < 7 ? 'maybe' : value)),
+      w: sample['w'].map((value, row) => (row === 10 ? '-1' : value)),
+    };
+    const spec = specificationOf({
+      weight: { column: 'w' },
+      partition: { column: 'part', development: ['dev'] },
+      exclusions: [{ reason: 'x', column: 'nowhere', in: ['a'] }],
+    });
+    const problems = problemsOf(() => prepare(spec, sourceOf(broken)));
+    expect(problems.map((problem) => problem.code)).toEqual([
+      'missing-column',
+      'unlisted-outcome',
+      'bad-weight',
+      'unlisted-partition',
+    ]);
+    expect(problems[1].where.values).toEqual([
+      { value: '', rows: 5 },
+      { value: 'maybe', rows: 2 },
+    ]);
+    expect(problems[1].where.count).toBe(7);
+  });
+
+  it('reconcile: every row is excluded, declined or counted in one partition', () => {
+    const spec = specificationOf({
+      declined: { column: 'decision', values: ['declined'], method: 'none' },
+      exclusions: [{ reason: 'branch 3', column: 'branch', in: ['b3'] }],
+      outcome: { column: 'bad', good: ['0'], bad: ['1'], excluded: ['i'] },
+    });
+    const { counts } = prepare(spec, source);
+    const { development, holdOut, outOfTime, excluded, declined } = counts;
+    const all = development.rows + holdOut.rows + outOfTime.rows + declined + excluded.reduce((sum, one) => sum + one.rows, 0);
+    expect(all).toBe(900);
+    expect(excluded.map((one) => one.reason)).toEqual(['branch 3', 'excluded by outcome']);
+    expect(declined).toBe(sample['decision'].filter((text, row) => text === 'declined' && sample['branch'][row] !== 'b3').length);
+  });
+
+  it('blocks a fit on one class', () => {
+    const spec = specificationOf({ outcome: { column: 'bad', good: ['0', '1'], bad: ['none'], indeterminate: ['i'] } });
+    expect(problemsOf(() => prepare(spec, source))[0].code).toBe('one-class');
+    expect(prepare(spec, source, { allowUnfittable: true }).counts.development.bads).toBe(0);
+  });
+
+  it('draws hold-out by SHA-256 of seed:row, goods and bads apart, after out-of-time', () => {
+    const spec = specificationOf({
+      partition: { seed: 7, holdOutShare: 0.3, outOfTime: { column: 'applied_on', from: '2025-11-01', to: null } },
+    });
+    const { partition, outcome } = prepare(spec, source);
+    const inTime = Array.from(partition.keys()).filter((row) => sample['applied_on'][row] < '2025-11-01');
+    expect(Array.from(partition.keys()).filter((row) => partition[row] === OUT_OF_TIME)).toEqual(
+      Array.from(partition.keys()).filter((row) => !inTime.includes(row)),
+    );
+    for (const kind of [GOOD, BAD]) {
+      const rows = inTime.filter((row) => outcome[row] === kind);
+      const drawn = [...rows]
+        .sort((a, b) => (sha(`7:${a + 1}`) < sha(`7:${b + 1}`) ? -1 : 1))
+        .slice(0, Math.round(0.3 * rows.length));
+      expect(rows.filter((row) => partition[row] === HOLD_OUT)).toEqual(drawn.sort((a, b) => a - b));
+    }
+  });
+});
+
+describe('folds', () => {
+  const foldsOf = (folds: object, more: object = {}) =>
+    prepare(specificationOf({ fit: { mixing: 1, lambda: { value: 0.01 }, folds }, ...more }), source);
+
+  it('deal goods then bads in the order of SHA-256 of seed:fold:row', () => {
+    const { folds, outcome, partition } = foldsOf({ count: 5, seed: 3 });
+    for (const kind of [GOOD, BAD]) {
+      const rows = Array.from(outcome.keys()).filter((row) => outcome[row] === kind && partition[row] === DEVELOPMENT);
+      rows.sort((a, b) => (sha(`3:fold:${a + 1}`) < sha(`3:fold:${b + 1}`) ? -1 : 1));
+      rows.forEach((row, place) => expect(folds?.[row]).toBe((place % 5) + 1));
+    }
+  });
+
+  it('keep a group together, each to the lightest fold so far, in key order', () => {
+    const { folds, outcome, partition, weights } = foldsOf({ count: 3, seed: 3, groups: 'branch' }, { weight: { column: 'w' } });
+    const load = [0, 0, 0];
+    const names = [...new Set(sample['branch'])].sort((a, b) => (sha(`3:fold:${a}`) < sha(`3:fold:${b}`) ? -1 : 1));
+    for (const name of names) {
+      const rows = Array.from(outcome.keys()).filter(
+        (row) => sample['branch'][row] === name && outcome[row] <= GOOD && partition[row] === DEVELOPMENT,
+      );
+      if (rows.length === 0) continue;
+      const lightest = load.indexOf(Math.min(...load));
+      rows.forEach((row) => expect(folds?.[row], name).toBe(lightest + 1));
+      load[lightest] += rows.reduce((sum, row) => sum + (weights?.[row] ?? 0), 0);
+    }
+  });
+
+  it('come from a column in ascending order, and need at least two', () => {
+    const { folds, foldCount, outcome, partition } = foldsOf({ column: 'fold' });
+    expect(foldCount).toBe(4);
+    const row = Array.from(outcome.keys()).find((one) => outcome[one] <= GOOD && partition[one] === DEVELOPMENT) ?? 0;
+    expect(folds?.[row]).toBe(Number(sample['fold'][row]));
+    expect(
+      problemsOf(() =>
+        prepare(specificationOf({ fit: { mixing: 1, lambda: { value: 0.01 }, folds: { column: 'part' } } }), source),
+      )[0].code,
+    ).toBe('fold-count');
+  });
+});
+
+describe('bin codes', () => {
+  const values: Sample = {
+    x: ['25', '24.99', '', '-999', '-999.0', '37', 'NA', '1e2'],
+    c: ['owner', 'rent', '', 'unknown', 'castle', 'other', 'owner', 'rent'],
+    bad: ['0', '1', '0', '1', '0', '1', '0', '1'],
+    part: new Array<string>(8).fill('dev'),
+  };
+  const codes = (characteristic: object, columns: ColumnSource = sourceOf(values)): number[] => {
+    const spec = specificationOf({ characteristics: [characteristic] });
+    return Array.from(codeCharacteristics(spec, columns, prepare(spec, columns)).characteristics[0].codes ?? []);
+  };
+  const special = [{ label: 'none', values: [-999], bin: 'own' }];
+
+  it('hold closure, specials as doubles, missing in a bin of its own', () => {
+    expect(codes({ column: 'x', kind: 'numeric', edges: [25, 37], special })).toEqual([1, 0, 4, 3, 3, 2, 4, 2]);
+    expect(codes({ column: 'x', kind: 'numeric', edges: [25, 37], special, closed: 'right' })).toEqual([0, 0, 4, 3, 3, 1, 4, 2]);
+  });
+
+  it('let special, missing and unseen join a bin', () => {
+    expect(codes({ column: 'x', kind: 'numeric', edges: [25, 37], special: [{ ...special[0], bin: 2 }], missing: 0 })).toEqual([
+      1, 0, 0, 2, 2, 2, 0, 2,
+    ]);
+    const groups = [['owner'], ['rent', 'other']];
+    expect(codes({ column: 'c', kind: 'categorical', groups })).toEqual([0, 1, 2, NO_BIN, NO_BIN, 1, 0, 1]);
+    expect(
+      codes({
+        column: 'c',
+        kind: 'categorical',
+        groups,
+        unseen: 1,
+        missing: 0,
+        special: [{ label: 'u', values: ['unknown'], bin: 'own' }],
+      }),
+    ).toEqual([0, 1, 0, 2, 1, 1, 0, 1]);
+  });
+
+  it('are the same from a column of numbers as from texts', () => {
+    const numbers: ColumnSource = {
+      rows: 8,
+      column: (name) =>
+        name === 'x'
+          ? {
+              kind: 'numbers',
+              values: Float64Array.of(25, 24.99, NaN, -999, -999, 37, NaN, 100),
+              exceptions: new Map([[6, 'NA']]),
+            }
+          : sourceOf(values).column(name),
+    };
+    const characteristic = { column: 'x', kind: 'numeric', edges: [25, 37], special };
+    expect(codes(characteristic, numbers)).toEqual(codes(characteristic));
+  });
+
+  it('refuse what is no number and refused missing values, of all characteristics at once', () => {
+    const spec = specificationOf({
+      characteristics: [
+        { column: 'c', kind: 'numeric', edges: [1] },
+        { column: 'x', kind: 'numeric', edges: [1], missing: 'refuse' },
+      ],
+    });
+    const problems = problemsOf(() => codeCharacteristics(spec, sourceOf(values), prepare(spec, sourceOf(values))));
+    expect(problems.map((problem) => [problem.code, problem.where.column, problem.where.count])).toEqual([
+      ['not-a-number', 'c', 7],
+      ['refused-missing', 'x', 2],
+    ]);
+  });
+
+  it('ignore rows that are out', () => {
+    const dirty = { ...values, x: values['x'].map((text, row) => (row === 1 ? 'oops' : text)) };
+    const spec = specificationOf({
+      characteristics: [{ column: 'x', kind: 'numeric', edges: [25] }],
+      exclusions: [{ reason: 'x', column: 'x', in: ['oops'] }],
+    });
+    const columns = sourceOf(dirty);
+    expect(codeCharacteristics(spec, columns, prepare(spec, columns)).characteristics[0].codes?.[1]).toBe(NO_BIN);
+  });
+});
