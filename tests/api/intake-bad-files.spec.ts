@@ -14,7 +14,8 @@ beforeAll(async () => {
 });
 afterAll(() => server.stop());
 
-const rows = (count: number, make: (row: number) => string): string => Array.from({ length: count }, (_, row) => make(row)).join('\n');
+const rows = (count: number, make: (row: number) => string): string =>
+  Array.from({ length: count }, (_, row) => make(row)).join('\n');
 const file = (header: string, count: number, make: (row: number) => string): string => `${header}\n${rows(count, make)}\n`;
 
 async function preview(bytes: string | Buffer, choices: object = {}): Promise<Preview & { path: string }> {
@@ -98,30 +99,53 @@ describe('rows and headers', () => {
   });
 
   it('reports every kind of problem of one file together', async () => {
-    const problems = await refused(Buffer.concat([Buffer.from('a,a,c\n1,2\n1,"x"y,3\n1,\0,3\n'), Buffer.from([0xff]), Buffer.from(',2,3\n')]), { encoding: 'utf-8', delimiter: ',' });
-    expect(problems.map(({ code }) => code).sort()).toEqual(['duplicate-header', 'not-in-encoding', 'nul-byte', 'ragged', 'stray-quote']);
+    const problems = await refused(
+      Buffer.concat([Buffer.from('a,a,c\n1,2\n1,"x"y,3\n1,\0,3\n'), Buffer.from([0xff]), Buffer.from(',2,3\n')]),
+      { encoding: 'utf-8', delimiter: ',' },
+    );
+    expect(problems.map(({ code }) => code).sort()).toEqual([
+      'duplicate-header',
+      'not-in-encoding',
+      'nul-byte',
+      'ragged',
+      'stray-quote',
+    ]);
   });
 
   it('names line and column of a NUL byte and of a cell over one megabyte', async () => {
-    expect(await refused(`a,b\n1,2\n3,4\0\n`)).toMatchObject([{ code: 'nul-byte', where: { line: 3, column: 'b', position: 2 } }]);
-    expect(await refused(`a,b\n1,2\n${'x'.repeat(1_100_000)},4\n`)).toMatchObject([{ code: 'cell-too-large', where: { line: 3, column: 'a' } }]);
+    expect(await refused(`a,b\n1,2\n3,4\0\n`)).toMatchObject([
+      { code: 'nul-byte', where: { line: 3, column: 'b', position: 2 } },
+    ]);
+    expect(await refused(`a,b\n1,2\n${'x'.repeat(1_100_000)},4\n`)).toMatchObject([
+      { code: 'cell-too-large', where: { line: 3, column: 'a' } },
+    ]);
   });
 
   it('states the limit of columns and what was found', async () => {
     const wide = Array.from({ length: 201 }, (_, k) => `c${k}`);
     const problems = await refused(`${wide.join(',')}\n${wide.map(() => '1').join(',')}\n`);
-    expect(problems).toMatchObject([{ code: 'too-many-columns', message: 'The file has 201 columns; at most 200 can be brought in.' }]);
+    expect(problems).toMatchObject([
+      { code: 'too-many-columns', message: 'The file has 201 columns; at most 200 can be brought in.' },
+    ]);
   });
 });
 
 describe('numbers and dates', () => {
   const columnsOf = async (text: string, choices: object = {}) => {
     const { path } = await modeller.sample(modelId, text, choices);
-    return (await modeller.get(`${path}/columns`).expect(200)).body.columns as { kind: string; missing: number; numeric: { smallest: number } | null; flags: { code: string; finding: string }[] }[];
+    return (await modeller.get(`${path}/columns`).expect(200)).body.columns as {
+      kind: string;
+      missing: number;
+      numeric: { smallest: number } | null;
+      flags: { code: string; finding: string }[];
+    }[];
   };
 
   it('never turns an empty field or a blank one into zero', async () => {
-    const [amount] = await columnsOf(file('amount,bad', 40, (row) => `${['5', '', '" "', '7'][row % 4]},${row % 2}`), { missing: [''] });
+    const [amount] = await columnsOf(
+      file('amount,bad', 40, (row) => `${['5', '', '" "', '7'][row % 4]},${row % 2}`),
+      { missing: [''] },
+    );
     expect(amount.missing).toBe(10);
     expect(amount.numeric?.smallest ?? null).not.toBe(0);
     const [trimmed] = await columnsOf(file('amount,bad', 40, (row) => `${['5', '   ', '""', '7'][row % 4]},${row % 2}`));
@@ -129,7 +153,11 @@ describe('numbers and dates', () => {
   });
 
   it('counts tokens that are no numbers by column, and blocks the column until they are settled', async () => {
-    const text = file('amount,bad', 200, (row) => `${row === 17 ? 'NaN' : row === 18 ? '1e309' : row === 19 ? '0x10' : row === 20 ? 'Inf' : row + 10},${row % 2}`);
+    const text = file(
+      'amount,bad',
+      200,
+      (row) => `${row === 17 ? 'NaN' : row === 18 ? '1e309' : row === 19 ? '0x10' : row === 20 ? 'Inf' : row + 10},${row % 2}`,
+    );
     const { path } = await modeller.sample(modelId, text, { missing: [''] });
     const { body } = await modeller.get(`${path}/columns`).expect(200);
     const flag = body.columns[0].flags.find(({ code }: { code: string }) => code === 'unreadable-numbers');
@@ -137,7 +165,10 @@ describe('numbers and dates', () => {
     const draft = await modeller.get(`${path}/draft`).expect(200);
     expect(draft.body.problems).toMatchObject([{ code: 'unreadable-numbers', where: { column: 'amount' } }]);
     // Named as missing they are settled.
-    const again = await modeller.post(`${path}/readings`).send({ ...(await modeller.get(path)).body.reading, missing: ['', 'NaN', '1e309', '0x10', 'Inf'] }).expect(202);
+    const again = await modeller
+      .post(`${path}/readings`)
+      .send({ ...(await modeller.get(path)).body.reading, missing: ['', 'NaN', '1e309', '0x10', 'Inf'] })
+      .expect(202);
     expect((await modeller.ended(again.body.id)).state).toBe('succeeded');
     const settled = await modeller.get(`${path}/draft`).expect(200);
     expect(settled.body.problems).toEqual([]);
@@ -151,12 +182,18 @@ describe('numbers and dates', () => {
     expect(shown.columns[0].kind).toBe('numeric');
     const [amount] = await columnsOf(text);
     expect(amount.numeric?.smallest).toBe(1100.05);
-    const refusedSigns = await modeller.post(`${shown.path}/readings`).send({ ...shown.choices, thousands: ',' }).expect(422);
+    const refusedSigns = await modeller
+      .post(`${shown.path}/readings`)
+      .send({ ...shown.choices, thousands: ',' })
+      .expect(422);
     expect(refusedSigns.body.problems[0].code).toBe('signs-equal');
   });
 
   it('shows numbers of mixed spelling with examples', async () => {
-    const [amount] = await columnsOf(file('amount;bad', 60, (row) => `${row % 2 === 0 ? '1,5' : '1.234,56'};${row % 2}`).replace('1.234,56', '12.5'), { decimal: '.', thousands: null, delimiter: ';' });
+    const [amount] = await columnsOf(
+      file('amount;bad', 60, (row) => `${row % 2 === 0 ? '1,5' : '1.234,56'};${row % 2}`).replace('1.234,56', '12.5'),
+      { decimal: '.', thousands: null, delimiter: ';' },
+    );
     expect(amount.kind).toBe('categorical');
     expect(amount.flags.map(({ code }) => code)).toContain('numbers-as-text');
   });
@@ -168,7 +205,10 @@ describe('numbers and dates', () => {
   });
 
   it('sets constant and empty columns to not used with the reason', async () => {
-    const { path } = await modeller.sample(modelId, file('nothing,same,income,bad', 60, (row) => `,x,${row * 3 + 100},${row % 3 === 0 ? 1 : 0}`));
+    const { path } = await modeller.sample(
+      modelId,
+      file('nothing,same,income,bad', 60, (row) => `,x,${row * 3 + 100},${row % 3 === 0 ? 1 : 0}`),
+    );
     const { body } = await modeller.get(`${path}/draft`).expect(200);
     expect(body.content.columns.slice(0, 2)).toMatchObject([
       { role: 'not used', reason: 'All 60 values are missing.' },
@@ -177,7 +217,10 @@ describe('numbers and dates', () => {
   });
 
   it('warns of identifiers that repeat, with the count', async () => {
-    const { path } = await modeller.sample(modelId, file('application_id,income,bad', 200, (row) => `A${row < 4 ? 0 : row},${row * 3},${row % 3 === 0 ? 1 : 0}`));
+    const { path } = await modeller.sample(
+      modelId,
+      file('application_id,income,bad', 200, (row) => `A${row < 4 ? 0 : row},${row * 3},${row % 3 === 0 ? 1 : 0}`),
+    );
     const { body } = await modeller.get(`${path}/columns`).expect(200);
     const flag = body.columns[0].flags.find(({ code }: { code: string }) => code === 'repeated-identifiers');
     expect(flag.finding).toContain('3 rows repeat an identifier');

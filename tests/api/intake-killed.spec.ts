@@ -35,7 +35,9 @@ function start(): Promise<{ process: ChildProcess; url: string }> {
       stdio: ['ignore', 'ignore', 'inherit', 'ipc'],
     });
     child.once('message', (said: { type: string; url?: string; message?: string }) =>
-      said.type === 'ready' && said.url ? resolve({ process: child, url: said.url.replace('localhost', '127.0.0.1') }) : reject(new Error(said.message)),
+      said.type === 'ready' && said.url
+        ? resolve({ process: child, url: said.url.replace('localhost', '127.0.0.1') })
+        : reject(new Error(said.message)),
     );
     child.once('exit', (code) => reject(new Error(`The server ended with ${code}`)));
   });
@@ -49,7 +51,14 @@ function kill(child: ChildProcess): Promise<void> {
 }
 
 /** Sends bytes from an offset; resolves with the status, or null when the connection broke. `stopAfter` holds the rest back. */
-function patch(url: string, offset: number, bytes: Buffer, cookie: string, token: string, stopAfter?: { bytes: number; reached: () => void }): Promise<number | null> {
+function patch(
+  url: string,
+  offset: number,
+  bytes: Buffer,
+  cookie: string,
+  token: string,
+  stopAfter?: { bytes: number; reached: () => void },
+): Promise<number | null> {
   return new Promise((resolve) => {
     const request = send(
       url,
@@ -77,7 +86,14 @@ function patch(url: string, offset: number, bytes: Buffer, cookie: string, token
 
 describe('a server killed in the middle of an upload', () => {
   it('goes on from the offset of the last chunk, and the file arrives whole', async () => {
-    const bytes = Buffer.concat([Buffer.from('id,bad\n'), Buffer.from(randomBytes(20 * 1024 * 1024).toString('base64').replace(/(.{40})/g, '$1,1\n'))]);
+    const bytes = Buffer.concat([
+      Buffer.from('id,bad\n'),
+      Buffer.from(
+        randomBytes(20 * 1024 * 1024)
+          .toString('base64')
+          .replace(/(.{40})/g, '$1,1\n'),
+      ),
+    ]);
     const sha256 = createHash('sha256').update(bytes).digest('hex');
     const { cookie, token } = modeller.credentials();
 

@@ -52,7 +52,9 @@ describe('sending a file', () => {
     await modeller.sendUpload(url, offset, bytes.subarray(offset)).expect(204);
     const after = await list(modeller);
     expect(after.uploads).toEqual([]);
-    expect(after.samples).toMatchObject([{ state: 'received', size: bytes.length, sha256: sha256(bytes), number: 1, rows: null }]);
+    expect(after.samples).toMatchObject([
+      { state: 'received', size: bytes.length, sha256: sha256(bytes), number: 1, rows: null },
+    ]);
   });
 
   it('belongs to whoever began it', async () => {
@@ -71,7 +73,11 @@ describe('sending a file', () => {
   });
 
   it('is refused without the token of the page, like any change', async () => {
-    await modeller.agent.post(`/api/models/${modelId}/uploads`).set('Tus-Resumable', '1.0.0').set('Upload-Length', '10').expect(403);
+    await modeller.agent
+      .post(`/api/models/${modelId}/uploads`)
+      .set('Tus-Resumable', '1.0.0')
+      .set('Upload-Length', '10')
+      .expect(403);
     const begun = await modeller.beginUpload(modelId, 10).expect(201);
     await modeller.agent
       .patch(begun.headers.location)
@@ -97,7 +103,9 @@ describe('sending a file', () => {
 
   it('has its limits, each with what was found', async () => {
     const over = await modeller.beginUpload(modelId, 2 * 1024 ** 3).expect(413);
-    expect(over.body.detail).toBe('The file has 2.00 GiB; at most 1 GiB can be brought in. Split it, or leave out columns that are not needed.');
+    expect(over.body.detail).toBe(
+      'The file has 2.00 GiB; at most 1 GiB can be brought in. Split it, or leave out columns that are not needed.',
+    );
     const empty = await modeller.beginUpload(modelId, 0).expect(422);
     expect(empty.body.problems).toMatchObject([{ code: 'no-rows', message: 'No rows: the file is empty.' }]);
     const unnamed = await modeller.post(`/api/models/${modelId}/uploads`).set('Tus-Resumable', '1.0.0').expect(422);
@@ -114,15 +122,36 @@ describe('files that are not read here are refused before anything starts', () =
     const begun = await modeller.beginUpload(modelId, bytes.length, name);
     return begun.status === 201 ? modeller.sendUpload(begun.headers.location, 0, bytes) : begun;
   };
-  const zip = (inside: string): Buffer => Buffer.concat([Buffer.from([0x50, 0x4b, 3, 4]), Buffer.alloc(26), Buffer.from(inside), Buffer.alloc(5000)]);
+  const zip = (inside: string): Buffer =>
+    Buffer.concat([Buffer.from([0x50, 0x4b, 3, 4]), Buffer.alloc(26), Buffer.from(inside), Buffer.alloc(5000)]);
 
   it.each([
     ['an Excel file by its content', () => send(zip('[Content_Types].xml')), 415, 'This is an Excel file; export it as CSV.'],
-    ['an Excel file by its name', () => send(Buffer.from('a,b\n1,2\n'), 'applicants.xlsx'), 415, 'This is a spreadsheet file; export it as CSV.'],
-    ['an old Excel file', () => send(Buffer.concat([Buffer.from([0xd0, 0xcf, 0x11, 0xe0]), Buffer.alloc(5000)])), 415, 'This is an Excel file; export it as CSV.'],
-    ['a ZIP archive', () => send(zip('applicants.csv')), 415, 'This is a ZIP archive; unpack it and bring in the CSV file inside.'],
+    [
+      'an Excel file by its name',
+      () => send(Buffer.from('a,b\n1,2\n'), 'applicants.xlsx'),
+      415,
+      'This is a spreadsheet file; export it as CSV.',
+    ],
+    [
+      'an old Excel file',
+      () => send(Buffer.concat([Buffer.from([0xd0, 0xcf, 0x11, 0xe0]), Buffer.alloc(5000)])),
+      415,
+      'This is an Excel file; export it as CSV.',
+    ],
+    [
+      'a ZIP archive',
+      () => send(zip('applicants.csv')),
+      415,
+      'This is a ZIP archive; unpack it and bring in the CSV file inside.',
+    ],
     ['a PDF', () => send(Buffer.from(`%PDF-1.7\n${'x'.repeat(5000)}`)), 415, 'This is a PDF file; export the data as CSV.'],
-    ['a header and nothing below', () => send(Buffer.from('age,income,bad\n\n')), 422, 'No rows: the file has a header and nothing below it.'],
+    [
+      'a header and nothing below',
+      () => send(Buffer.from('age,income,bad\n\n')),
+      422,
+      'No rows: the file has a header and nothing below it.',
+    ],
     ['blanks only', () => send(Buffer.from('\ufeff \r\n\r\n')), 422, 'No rows: the file is empty.'],
   ])('%s', async (_what, sent, status, detail) => {
     const samples = (await list(modeller)).samples.length;
@@ -144,7 +173,8 @@ describe('a reading that is cancelled', () => {
     const { body: run } = await modeller.post(`${path}/readings`).send(preview.choices).expect(202);
     await modeller.post(`${path}/readings`).send(preview.choices).expect(409);
     // Under way for a moment, so that something has been stored.
-    for (let wait = 0; wait < 400 && (await modeller.get(`/api/runs/${run.id}`)).body.share < 0.1; wait++) await new Promise((resolve) => setTimeout(resolve, 20));
+    for (let wait = 0; wait < 400 && (await modeller.get(`/api/runs/${run.id}`)).body.share < 0.1; wait++)
+      await new Promise((resolve) => setTimeout(resolve, 20));
     expect((await modeller.get(path)).body.state).toBe('reading');
     await modeller.post(`/api/runs/${run.id}/cancel`).expect(200);
     const ended = await modeller.ended(run.id);
@@ -158,7 +188,9 @@ describe('a reading that is cancelled', () => {
     // The file is still here, and can be read after all or discarded.
     await modeller.delete(path).expect(204);
     await modeller.get(path).expect(404);
-    const [[chunks]] = await server.context.sequelize.query(`SELECT count(*)::int AS left FROM raw_files f WHERE f.file_name = 'large.csv'`);
+    const [[chunks]] = await server.context.sequelize.query(
+      `SELECT count(*)::int AS left FROM raw_files f WHERE f.file_name = 'large.csv'`,
+    );
     expect(chunks).toEqual({ left: 0 });
   }, 120_000);
 });

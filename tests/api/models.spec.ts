@@ -19,7 +19,10 @@ afterAll(() => server.stop());
 describe('the inventory of models', () => {
   it('gives each model a number of its own and its maker as first member', async () => {
     const first = await modeller.post('/api/models').send(modelFields).expect(201);
-    const second = await modeller.post('/api/models').send({ ...modelFields, name: 'Car loans' }).expect(201);
+    const second = await modeller
+      .post('/api/models')
+      .send({ ...modelFields, name: 'Car loans' })
+      .expect(201);
     expect(first.body.inventoryNumber).toMatch(/^M-\d{4,}$/);
     expect(second.body.inventoryNumber).not.toBe(first.body.inventoryNumber);
     expect(first.body).toMatchObject({ state: 'In development', revision: 1, intendedUse: '', members: [{ name: 'marian' }] });
@@ -43,7 +46,9 @@ describe('the inventory of models', () => {
     // An admin reads the inventory and nothing inside a model.
     await admin.get(`/api/models/${id}/samples`).expect(404);
     await admin.get(`/api/models/${id}/work`).expect(404);
-    const lists = await Promise.all([modeller, other, validator].map((visitor) => visitor.get('/api/models?search=seen%20by').expect(200)));
+    const lists = await Promise.all(
+      [modeller, other, validator].map((visitor) => visitor.get('/api/models?search=seen%20by').expect(200)),
+    );
     expect(lists.map(({ body }) => body.models.length)).toEqual([1, 0, 1]);
   });
 
@@ -51,7 +56,11 @@ describe('the inventory of models', () => {
     const id = await modeller.model('Edited');
     const read = await modeller.get(`/api/models/${id}`).expect(200);
     await modeller.patch(`/api/models/${id}`).send({ owner: 'Someone' }).expect(428);
-    const saved = await modeller.patch(`/api/models/${id}`).set('If-Match', read.headers.etag).send({ owner: 'Someone' }).expect(200);
+    const saved = await modeller
+      .patch(`/api/models/${id}`)
+      .set('If-Match', read.headers.etag)
+      .send({ owner: 'Someone' })
+      .expect(200);
     expect(saved.body).toMatchObject({ owner: 'Someone', revision: 2, purpose: modelFields.purpose });
     await modeller.patch(`/api/models/${id}`).set('If-Match', read.headers.etag).send({ owner: 'Another' }).expect(412);
     await validator.patch(`/api/models/${id}`).set('If-Match', saved.headers.etag).send({ owner: 'Another' }).expect(403);
@@ -62,7 +71,12 @@ describe('the inventory of models', () => {
     const id = await modeller.model('Raced');
     const { headers } = await modeller.get(`/api/models/${id}`);
     const answers = await Promise.all(
-      Array.from({ length: 12 }, (_, k) => modeller.patch(`/api/models/${id}`).set('If-Match', headers.etag).send({ owner: `Owner ${k}` })),
+      Array.from({ length: 12 }, (_, k) =>
+        modeller
+          .patch(`/api/models/${id}`)
+          .set('If-Match', headers.etag)
+          .send({ owner: `Owner ${k}` }),
+      ),
     );
     expect(answers.filter(({ status }) => status === 200)).toHaveLength(1);
     expect(answers.filter(({ status }) => status === 412)).toHaveLength(11);
@@ -101,6 +115,10 @@ describe('the inventory of models', () => {
     await modeller.patch(`/api/models/${id}`).set('If-Match', headers.etag).send({ owner: 'Someone else' }).expect(200);
     const { body } = await validator.get(`/api/record?modelId=${id}`).expect(200);
     expect(body.entries.map(({ action }: { action: string }) => action)).toEqual(['model.edited', 'model.created']);
-    expect(body.entries[0]).toMatchObject({ before: { owner: modelFields.owner }, after: { owner: 'Someone else' }, actorName: 'marian' });
+    expect(body.entries[0]).toMatchObject({
+      before: { owner: modelFields.owner },
+      after: { owner: 'Someone else' },
+      actorName: 'marian',
+    });
   });
 });

@@ -56,9 +56,18 @@ describe('a sample from its file to its definition', () => {
     expect(sample.run).toMatchObject({ state: 'succeeded', kind: 'sample.read', result: { rows: 600, columns: 10 } });
     ({ path, id: sampleId } = sample);
     const { body: shown } = await modeller.get(path).expect(200);
-    expect(shown).toMatchObject({ state: 'ready', rows: 600, columns: 10, problems: [], runId: null, abilities: ['read-file', 'define', 'discard'] });
+    expect(shown).toMatchObject({
+      state: 'ready',
+      rows: 600,
+      columns: 10,
+      problems: [],
+      runId: null,
+      abilities: ['read-file', 'define', 'discard'],
+    });
     const { body } = await modeller.get(`${path}/columns`).expect(200);
-    const roles = Object.fromEntries(body.columns.map((column: { column: string; suggestedRole: string }) => [column.column, column.suggestedRole]));
+    const roles = Object.fromEntries(
+      body.columns.map((column: { column: string; suggestedRole: string }) => [column.column, column.suggestedRole]),
+    );
     expect(roles).toEqual({
       application_id: 'identifier',
       applied_on: 'application date',
@@ -87,7 +96,12 @@ describe('a sample from its file to its definition', () => {
     const [chunks] = await server.context.sequelize.query('SELECT content FROM raw_chunks');
     expect((chunks as { content: Buffer }[]).some((chunk) => chunk.content.includes('SM-000'))).toBe(false);
     const parts: Buffer[] = [];
-    for await (const bytes of readRawFile(server.context.sequelize, server.context.config.keys.rawFiles.subarray(0, 32), sampleId)) parts.push(bytes);
+    for await (const bytes of readRawFile(
+      server.context.sequelize,
+      server.context.config.keys.rawFiles.subarray(0, 32),
+      sampleId,
+    ))
+      parts.push(bytes);
     expect(Buffer.concat(parts).toString()).toBe(applicants());
   });
 
@@ -114,7 +128,9 @@ describe('a sample from its file to its definition', () => {
       partition: { by: 'seed', seed: 7, holdOutShare: 0.3, outOfTime: { from: '2025-01-01', to: null } },
     };
     await modeller.put(`${path}/draft`).send(content).expect(428);
-    const saves = await Promise.all(Array.from({ length: 6 }, () => modeller.put(`${path}/draft`).set('If-Match', etag).send(content)));
+    const saves = await Promise.all(
+      Array.from({ length: 6 }, () => modeller.put(`${path}/draft`).set('If-Match', etag).send(content)),
+    );
     expect(saves.map(({ status }) => status).sort()).toEqual([200, 412, 412, 412, 412, 412]);
     const stale = saves.find(({ status }) => status === 412);
     const saved = saves.find(({ status }) => status === 200);
@@ -129,14 +145,32 @@ describe('a sample from its file to its definition', () => {
       outcome: { good: ['0'], bad: ['0'], indeterminate: [], excluded: [] },
       exclusions: [
         { reason: ' ', combine: 'all', tests: [] },
-        { reason: 'unknown', combine: 'any', tests: [{ column: 'nowhere', missing: true }, { column: 'home', below: 3 }] },
+        {
+          reason: 'unknown',
+          combine: 'any',
+          tests: [
+            { column: 'nowhere', missing: true },
+            { column: 'home', below: 3 },
+          ],
+        },
       ],
       partition: { by: 'column', development: [], holdOut: [], outOfTime: [] },
     };
     const saved = await modeller.put(`${path}/draft`).set('If-Match', etag).send(broken).expect(200);
     etag = saved.headers.etag;
     const codes = saved.body.problems.map(({ code }: { code: string }) => code);
-    expect(codes).toEqual(expect.arrayContaining(['role-twice', 'value-twice', 'no-reason', 'no-test', 'no-such-column', 'not-comparable', 'no-partition-column', 'no-development']));
+    expect(codes).toEqual(
+      expect.arrayContaining([
+        'role-twice',
+        'value-twice',
+        'no-reason',
+        'no-test',
+        'no-such-column',
+        'not-comparable',
+        'no-partition-column',
+        'no-development',
+      ]),
+    );
     const refused = await modeller.post(`${path}/definitions`).send({ revision: saved.body.revision }).expect(422);
     expect(refused.body.problems.length).toBe(codes.length);
     etag = (await modeller.put(`${path}/draft`).set('If-Match', etag).send(content).expect(200)).headers.etag;
@@ -147,7 +181,8 @@ describe('a sample from its file to its definition', () => {
     expect(body.problems).toEqual([]);
     const { waterfall, partitions, declined } = body.counts;
     expect(waterfall[0]).toMatchObject({ kind: 'source', left: 600 });
-    for (let place = 1; place < waterfall.length; place++) expect(waterfall[place].left).toBe(waterfall[place - 1].left - waterfall[place].out);
+    for (let place = 1; place < waterfall.length; place++)
+      expect(waterfall[place].left).toBe(waterfall[place - 1].left - waterfall[place].out);
     expect(waterfall.at(-1)).toMatchObject({ kind: 'development', left: partitions.development.rows });
     // Every thirtieth row from 0 is a member of staff; of these 0, 210, 420 are declined and 0, 90, 180, ... bad.
     expect(waterfall[1]).toMatchObject({ kind: 'exclusion', label: 'staff loans', out: 20 });
@@ -163,7 +198,9 @@ describe('a sample from its file to its definition', () => {
     const { body: draft } = await modeller.get(`${path}/draft`).expect(200);
     const key = 'confirm-once-only';
     const sends = await Promise.all(
-      Array.from({ length: 5 }, () => modeller.post(`${path}/definitions`).set('Idempotency-Key', key).send({ revision: draft.revision }).expect(202)),
+      Array.from({ length: 5 }, () =>
+        modeller.post(`${path}/definitions`).set('Idempotency-Key', key).send({ revision: draft.revision }).expect(202),
+      ),
     );
     expect(new Set(sends.map(({ body }) => body.id)).size).toBe(1);
     const run = await modeller.ended(sends[0].body.id);
@@ -184,7 +221,10 @@ describe('a sample from its file to its definition', () => {
   });
 
   it('cannot be changed or removed once something rests on it, not even in the database', async () => {
-    await modeller.post(`${path}/readings`).send((await modeller.get(path)).body.reading).expect(403);
+    await modeller
+      .post(`${path}/readings`)
+      .send((await modeller.get(path)).body.reading)
+      .expect(403);
     await modeller.delete(path).expect(403);
     await expect(server.context.sequelize.query(`UPDATE sample_definitions SET number = 2`)).rejects.toThrow(/permission denied/);
     await expect(server.context.sequelize.query(`DELETE FROM definition_segments`)).rejects.toThrow(/permission denied/);
@@ -209,7 +249,9 @@ describe('outcomes that cannot be fitted are blocked with their values and count
   const file = (outcomes: readonly string[], extra = ''): string =>
     `income,bad${extra === '' ? '' : ',w'}\n${outcomes.map((bad, row) => `${1000 + ((row * 37) % 500)},${bad}${extra === '' ? '' : `,${extra.split(' ')[row % extra.split(' ').length]}`}`).join('\n')}\n`;
   const twenty = (make: (row: number) => string): string[] => Array.from({ length: 40 }, (_, row) => make(row));
-  const draftOf = async (csv: string): Promise<{ path: string; etag: string; content: DraftContent; problems: { code: string; message: string }[] }> => {
+  const draftOf = async (
+    csv: string,
+  ): Promise<{ path: string; etag: string; content: DraftContent; problems: { code: string; message: string }[] }> => {
     const { path } = await modeller.sample(modelId, csv);
     const { body, headers } = await modeller.get(`${path}/draft`).expect(200);
     return { path, etag: headers.etag, content: body.content, problems: body.problems };
@@ -218,8 +260,13 @@ describe('outcomes that cannot be fitted are blocked with their values and count
   it('one class', async () => {
     const { path, etag, content } = await draftOf(file(twenty(() => '0')));
     const columns = content.columns.map((column) => (column.column === 'bad' ? { ...column, role: 'outcome' as const } : column));
-    const saved = await modeller.put(`${path}/draft`).set('If-Match', etag).send({ ...content, columns, outcome: { good: ['0'], bad: ['1'], indeterminate: [], excluded: [] } });
-    expect(saved.body.problems).toMatchObject([{ code: 'one-class', message: 'The outcome has one class only: "0" 40×. A fit needs goods and bads.' }]);
+    const saved = await modeller
+      .put(`${path}/draft`)
+      .set('If-Match', etag)
+      .send({ ...content, columns, outcome: { good: ['0'], bad: ['1'], indeterminate: [], excluded: [] } });
+    expect(saved.body.problems).toMatchObject([
+      { code: 'one-class', message: 'The outcome has one class only: "0" 40×. A fit needs goods and bads.' },
+    ]);
   });
 
   it('a third value and missing ones, until they are mapped', async () => {
@@ -229,7 +276,11 @@ describe('outcomes that cannot be fitted are blocked with their values and count
       'The outcome is empty in 8 rows: say whether that is good, bad, indeterminate or excluded.',
     ]);
     const outcome = { ...content.outcome, indeterminate: ['2'], excluded: [''] };
-    const saved = await modeller.put(`${path}/draft`).set('If-Match', etag).send({ ...content, outcome }).expect(200);
+    const saved = await modeller
+      .put(`${path}/draft`)
+      .set('If-Match', etag)
+      .send({ ...content, outcome })
+      .expect(200);
     expect(saved.body.problems).toEqual([]);
     const { body } = await modeller.post(`${path}/draft/check`).expect(200);
     expect(body.counts.waterfall.find(({ kind }: { kind: string }) => kind === 'outcome')).toMatchObject({ out: 8 });
@@ -242,7 +293,11 @@ describe('outcomes that cannot be fitted are blocked with their values and count
     const withWeight = async (weights: string): Promise<string[]> => {
       const { path, etag, content } = await draftOf(file(outcomes, weights));
       const columns = content.columns.map((column) => (column.column === 'w' ? { ...column, role: 'weight' as const } : column));
-      const saved = await modeller.put(`${path}/draft`).set('If-Match', etag).send({ ...content, columns }).expect(200);
+      const saved = await modeller
+        .put(`${path}/draft`)
+        .set('If-Match', etag)
+        .send({ ...content, columns })
+        .expect(200);
       const { body } = await modeller.post(`${path}/draft/check`).expect(200);
       expect(body.problems.length).toBeGreaterThanOrEqual(saved.body.problems.length);
       return body.problems.map(({ code }: { code: string }) => code);

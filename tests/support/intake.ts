@@ -28,7 +28,9 @@ export class IntakeServer {
     private readonly worker: WorkerService | null,
   ) {}
 
-  static async start(options: { worker?: boolean; handlers?: readonly Handler[]; environment?: Record<string, string> } = {}): Promise<IntakeServer> {
+  static async start(
+    options: { worker?: boolean; handlers?: readonly Handler[]; environment?: Record<string, string> } = {},
+  ): Promise<IntakeServer> {
     const database = await createTestDatabase();
     const folder = createTestDataFolder();
     const config = readConfig({ ...IntakeServer.environment(database, folder), ...options.environment });
@@ -59,7 +61,9 @@ export class IntakeServer {
   async signIn(name: string, ...roles: Role[]): Promise<Visitor> {
     const email = `${name}@saltmarsh.example`;
     const passwordHash = await hashPassword(this.context, password);
-    const person = await inTransaction(this.context.sequelize, (tx) => createPerson(tx, { name, email, passwordHash, roles, by: 'set-up' }));
+    const person = await inTransaction(this.context.sequelize, (tx) =>
+      createPerson(tx, { name, email, passwordHash, roles, by: 'set-up' }),
+    );
     const visitor = new Visitor(supertest.agent(this.app), person.id);
     await visitor.enter(email);
     return visitor;
@@ -76,8 +80,18 @@ export class Visitor {
     readonly personId: string,
   ) {}
 
-  async enter(email: string): Promise<void> {
+  /** The cross-site token as it is now. */
+  get currentToken(): string {
+    return this.token;
+  }
+
+  /** Opens a page without signing in: brings the token. */
+  async meet(): Promise<void> {
     await this.keepToken(this.agent.get('/api/session'));
+  }
+
+  async enter(email: string): Promise<void> {
+    await this.meet();
     await this.keepToken(this.agent.post('/api/session').set('X-XSRF-TOKEN', this.token).send({ email, password }).expect(200));
   }
 
@@ -106,12 +120,19 @@ export class Visitor {
 
   /** A model of this person's own. */
   async model(name = 'Personal loans'): Promise<string> {
-    const response = await this.post('/api/models').send({ ...modelFields, name }).expect(201);
+    const response = await this.post('/api/models')
+      .send({ ...modelFields, name })
+      .expect(201);
     return (response.body as { id: string }).id;
   }
 
   /** Sends a whole file by the tus protocol, in pieces, and returns the sample that it became. */
-  async upload(modelId: string, bytes: Buffer, fileName = 'applicants.csv', piece = 4 * 1024 * 1024): Promise<{ id: string; sha256: string }> {
+  async upload(
+    modelId: string,
+    bytes: Buffer,
+    fileName = 'applicants.csv',
+    piece = 4 * 1024 * 1024,
+  ): Promise<{ id: string; sha256: string }> {
     const begun = await this.beginUpload(modelId, bytes.length, fileName).expect(201);
     const url = begun.headers.location;
     for (let offset = 0; offset < bytes.length; offset += piece) {
@@ -149,11 +170,17 @@ export class Visitor {
   }
 
   /** Uploads and reads under the proposed choices, or those given beside. */
-  async sample(modelId: string, csv: string | Buffer, choices: Record<string, unknown> = {}): Promise<{ id: string; path: string; run: Run }> {
+  async sample(
+    modelId: string,
+    csv: string | Buffer,
+    choices: Record<string, unknown> = {},
+  ): Promise<{ id: string; path: string; run: Run }> {
     const { id } = await this.upload(modelId, Buffer.isBuffer(csv) ? csv : Buffer.from(csv));
     const path = `/api/models/${modelId}/samples/${id}`;
     const preview = await this.post(`${path}/preview`).send(choices).expect(200);
-    const started = await this.post(`${path}/readings`).send((preview.body as { choices: object }).choices).expect(202);
+    const started = await this.post(`${path}/readings`)
+      .send((preview.body as { choices: object }).choices)
+      .expect(202);
     return { id, path, run: await this.ended((started.body as Run).id) };
   }
 }

@@ -10,7 +10,8 @@ export interface ModelMembership {
 
 const has = (person: Actor, ...roles: Role[]): boolean => roles.some((role) => person.roles.includes(role));
 /** A member counts as long as they are a modeller: a role that was taken ends the work. */
-const isMember = (person: Actor, model: ModelMembership): boolean => has(person, 'modeller') && model.memberIds.includes(person.id);
+const isMember = (person: Actor, model: ModelMembership): boolean =>
+  has(person, 'modeller') && model.memberIds.includes(person.id);
 
 /** The inventory as such: everyone with a role has some model to see in it, or may make one. */
 export function canListModels(person: Actor): Decision {

@@ -25,7 +25,9 @@ export function canSendUpload(person: Actor, model: ModelMembership, uploadedBy:
 export function canReadFile(person: Actor, sample: SampleStanding): Decision {
   const develops = canDevelopModel(person, sample.model);
   if (!develops.allowed) return develops;
-  return sample.definitions === 0 ? allowed : forbidden('A confirmed definition rests on this reading. Upload the file as a new sample to read it otherwise.');
+  return sample.definitions === 0
+    ? allowed
+    : forbidden('A confirmed definition rests on this reading. Upload the file as a new sample to read it otherwise.');
 }
 
 export function canDefineSample(person: Actor, sample: SampleStanding): Decision {

@@ -14,7 +14,12 @@ export interface Assignment {
 type Kept = Uint8Array | Uint16Array | Float64Array;
 
 /** Stores the assignment in segments beside the columns; little-endian, raw deflate (RFC 1951). */
-export async function storeAssignment(sequelize: Sequelize, tx: Transaction, definitionId: string, assignment: Assignment): Promise<void> {
+export async function storeAssignment(
+  sequelize: Sequelize,
+  tx: Transaction,
+  definitionId: string,
+  assignment: Assignment,
+): Promise<void> {
   const kept: [string, Kept | null][] = [
     ['partition', assignment.partition],
     ['outcome', assignment.outcome],
@@ -26,10 +31,13 @@ export async function storeAssignment(sequelize: Sequelize, tx: Transaction, def
     for (let segment = 0; segment * segmentRows < values.length; segment++) {
       const part = values.subarray(segment * segmentRows, (segment + 1) * segmentRows);
       const content = deflateRawSync(Buffer.from(part.buffer, part.byteOffset, part.byteLength), { level: 4 });
-      await sequelize.query('INSERT INTO definition_segments (definition_id, what, segment, rows, content) VALUES ($1, $2, $3, $4, $5)', {
-        bind: [definitionId, what, segment, part.length, content],
-        transaction: tx,
-      });
+      await sequelize.query(
+        'INSERT INTO definition_segments (definition_id, what, segment, rows, content) VALUES ($1, $2, $3, $4, $5)',
+        {
+          bind: [definitionId, what, segment, part.length, content],
+          transaction: tx,
+        },
+      );
     }
   }
 }
@@ -56,7 +64,11 @@ export async function readAssignment(sequelize: Sequelize, definitionId: string,
     else (weights ??= new Float64Array(count)).set(new Float64Array(buffer), at);
     filled[what] += length;
   }
-  const whole = filled.partition === count && filled.outcome === count && filled.exclusion === count && (weights === null || filled.weight === count);
+  const whole =
+    filled.partition === count &&
+    filled.outcome === count &&
+    filled.exclusion === count &&
+    (weights === null || filled.weight === count);
   if (!whole) throw new Error(`The rows of definition ${definitionId} are not stored as a whole`);
   return { partition, outcome, exclusion, weights };
 }

@@ -24,10 +24,13 @@ export async function storeSegment(
       values.push(position, column.codes.length, encodeSegment(column));
       return `($1::uuid, $${values.length - 2}::int, $2::int, $${values.length - 1}::int, $${values.length}::bytea)`;
     });
-    await sequelize.query(`INSERT INTO column_segments (reading_id, position, segment, rows, content) VALUES ${tuples.join(', ')}`, {
-      bind: values,
-      transaction: tx,
-    });
+    await sequelize.query(
+      `INSERT INTO column_segments (reading_id, position, segment, rows, content) VALUES ${tuples.join(', ')}`,
+      {
+        bind: values,
+        transaction: tx,
+      },
+    );
   }
 }
 
@@ -45,7 +48,12 @@ export async function* readSegmentsOf(sequelize: Sequelize, readingId: string, p
 }
 
 /** One whole column in memory, with one dictionary over all its segments. */
-export async function readStoredColumn(sequelize: Sequelize, readingId: string, position: number, count: number): Promise<TextColumn> {
+export async function readStoredColumn(
+  sequelize: Sequelize,
+  readingId: string,
+  position: number,
+  count: number,
+): Promise<TextColumn> {
   const places = new Map<string, number>();
   const texts: string[] = [];
   const parts: { codes: TextSegment['codes']; places: Uint32Array }[] = [];

@@ -50,10 +50,19 @@ export async function storeChunk(
 }
 
 /** The chunks of a file in order, opened, one in memory at a time. */
-export async function* readChunks(sequelize: Sequelize, key: Buffer, fileId: string, signal?: AbortSignal): AsyncGenerator<Buffer> {
+export async function* readChunks(
+  sequelize: Sequelize,
+  key: Buffer,
+  fileId: string,
+  signal?: AbortSignal,
+): AsyncGenerator<Buffer> {
   for (let sequence = 0; ; sequence++) {
     signal?.throwIfAborted();
-    const [found] = await rows<{ content: Buffer }>(sequelize, 'SELECT content FROM raw_chunks WHERE file_id = $1 AND sequence = $2', [fileId, sequence]);
+    const [found] = await rows<{ content: Buffer }>(
+      sequelize,
+      'SELECT content FROM raw_chunks WHERE file_id = $1 AND sequence = $2',
+      [fileId, sequence],
+    );
     if (!found) return;
     yield await openChunk(key, fileId, sequence, found.content);
   }
@@ -65,7 +74,12 @@ export async function* readChunks(sequelize: Sequelize, key: Buffer, fileId: str
  * @example
  * for await (const bytes of readRawFile(sequelize, config.keys.rawFiles, sampleId)) hash.update(bytes);
  */
-export async function* readRawFile(sequelize: Sequelize, key: Buffer, sampleId: string, signal?: AbortSignal): AsyncGenerator<Buffer> {
+export async function* readRawFile(
+  sequelize: Sequelize,
+  key: Buffer,
+  sampleId: string,
+  signal?: AbortSignal,
+): AsyncGenerator<Buffer> {
   const [sample] = await rows<{ rawFileId: string; size: string }>(
     sequelize,
     'SELECT raw_file_id AS "rawFileId", size FROM samples WHERE id = $1',

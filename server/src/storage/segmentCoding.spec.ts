@@ -17,17 +17,39 @@ const roundTrip = (values: readonly string[]): string[] => valuesOf(decodeSegmen
 describe('a segment of a column', () => {
   it('brings every text back to the letter', () => {
     fc.assert(
-      fc.property(fc.array(fc.oneof(fc.string({ unit: 'binary' }), fc.integer().map(String), fc.double().map(String)), { maxLength: 300 }), (values) => {
-        // A file in any encoding holds whole characters only, never half a surrogate pair.
-        const kept = values.map((text) => Buffer.from(text, 'utf8').toString('utf8'));
-        expect(roundTrip(kept)).toEqual(kept);
-      }),
+      fc.property(
+        fc.array(fc.oneof(fc.string({ unit: 'binary' }), fc.integer().map(String), fc.double().map(String)), { maxLength: 300 }),
+        (values) => {
+          // A file in any encoding holds whole characters only, never half a surrogate pair.
+          const kept = values.map((text) => Buffer.from(text, 'utf8').toString('utf8'));
+          expect(roundTrip(kept)).toEqual(kept);
+        },
+      ),
       { numRuns: 500 },
     );
   });
 
   it('keeps spellings that a number would lose', () => {
-    const values = ['007', '7', '7.0', '7.00', '-0', '-0.00', '0', '+7', '1e3', '', ' 7', '-1.05', '-999', '90071992547409930', '0.1', '00', '.5', '5.'];
+    const values = [
+      '007',
+      '7',
+      '7.0',
+      '7.00',
+      '-0',
+      '-0.00',
+      '0',
+      '+7',
+      '1e3',
+      '',
+      ' 7',
+      '-1.05',
+      '-999',
+      '90071992547409930',
+      '0.1',
+      '00',
+      '.5',
+      '5.',
+    ];
     const many = [...values, ...Array.from({ length: 40 }, (_, k) => (k / 4 - 3).toFixed(2))];
     expect(roundTrip(many)).toEqual(many);
   });

@@ -139,6 +139,7 @@ export function decodeSegment(content: Buffer): TextSegment {
     return { codes, texts };
   }
   const codes = width === 2 ? new Uint16Array(rows) : new Uint32Array(rows);
-  for (let row = 0; row < rows; row++) codes[row] = width === 2 ? bytes.readUInt16LE(at + row * 2) : bytes.readUInt32LE(at + row * 4);
+  for (let row = 0; row < rows; row++)
+    codes[row] = width === 2 ? bytes.readUInt16LE(at + row * 2) : bytes.readUInt32LE(at + row * 4);
   return { codes, texts };
 }

@@ -64,7 +64,13 @@ export class UploadStore extends DataStore {
 
   override async getUpload(id: string): Promise<Upload> {
     const file = await this.find(id);
-    return new Upload({ id, size: file.size, offset: file.received, metadata: { filename: file.fileName }, creation_date: file.startedAt.toISOString() });
+    return new Upload({
+      id,
+      size: file.size,
+      offset: file.received,
+      metadata: { filename: file.fileName },
+      creation_date: file.startedAt.toISOString(),
+    });
   }
 
   override async remove(id: string): Promise<void> {
@@ -100,7 +106,7 @@ export class UploadStore extends DataStore {
 
     try {
       for await (const piece of stream as AsyncIterable<Buffer>) {
-        for (let from = 0; from < piece.length; ) {
+        for (let from = 0; from < piece.length;) {
           const part = piece.subarray(from, from + chunkBytes - waiting);
           pieces.push(part);
           waiting += part.length;
@@ -128,7 +134,11 @@ export class UploadStore extends DataStore {
     }
   }
 
-  private async storeNext(id: string, file: Progress, chunk: { sequence: number; start: number; bytes: Buffer; hash: Hash }): Promise<void> {
+  private async storeNext(
+    id: string,
+    file: Progress,
+    chunk: { sequence: number; start: number; bytes: Buffer; hash: Hash },
+  ): Promise<void> {
     const { sequelize, key } = this.options;
     const { sequence, start, bytes } = chunk;
     const content = await sealChunk(key, id, sequence, bytes);
@@ -145,8 +155,20 @@ export class UploadStore extends DataStore {
       await storeChunk(sequelize, tx, { fileId: id, sequence, start, length: bytes.length, content });
       if (end < file.size) return;
       const sha256 = chunk.hash.copy().update(bytes).digest('hex');
-      await rows(sequelize, 'UPDATE raw_files SET sha256 = $2, completed_at = now() WHERE id = $1 RETURNING id', [id, sha256], tx);
-      await this.options.complete(tx, { id, modelId: file.modelId, personId: file.personId, fileName: file.fileName, size: file.size, sha256 });
+      await rows(
+        sequelize,
+        'UPDATE raw_files SET sha256 = $2, completed_at = now() WHERE id = $1 RETURNING id',
+        [id, sha256],
+        tx,
+      );
+      await this.options.complete(tx, {
+        id,
+        modelId: file.modelId,
+        personId: file.personId,
+        fileName: file.fileName,
+        size: file.size,
+        sha256,
+      });
     });
   }
 

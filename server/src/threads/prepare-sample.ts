@@ -27,7 +27,12 @@ export const prepareSample: Task<PreparePayload, PrepareAnswer> = ({ content, ro
   try {
     const prepared = prepare(content, { rows, column: (name) => columns.get(name) });
     const { partition, outcome, exclusion, weights, counts } = prepared;
-    return { problems: null, prepared: { partition, outcome, exclusion, weights }, result: counts, counts: describe(content, prepared, columns) };
+    return {
+      problems: null,
+      prepared: { partition, outcome, exclusion, weights },
+      result: counts,
+      counts: describe(content, prepared, columns),
+    };
   } catch (error) {
     if (error instanceof ReplayError) return { problems: error.problems };
     throw error;
@@ -36,7 +41,11 @@ export const prepareSample: Task<PreparePayload, PrepareAnswer> = ({ content, ro
 
 const badRate = (goods: number, bads: number): number | null => (goods + bads === 0 ? null : bads / (goods + bads));
 
-function describe(content: SampleDefinitionContent, prepared: Prepared, columns: ReadonlyMap<string, SourceColumn>): DefinitionCounts {
+function describe(
+  content: SampleDefinitionContent,
+  prepared: Prepared,
+  columns: ReadonlyMap<string, SourceColumn>,
+): DefinitionCounts {
   const { counts } = prepared;
   const saysGood = goodTest(content, columns);
   const goodsOut = counts.excluded.map(() => 0);
@@ -44,22 +53,37 @@ function describe(content: SampleDefinitionContent, prepared: Prepared, columns:
     if (rule > 0 && saysGood(row)) goodsOut[rule - 1]++;
   });
 
-  const waterfall: WaterfallStep[] = [{ kind: 'source', label: 'Rows of the file', out: 0, outGoods: null, outBads: null, left: prepared.rows }];
+  const waterfall: WaterfallStep[] = [
+    { kind: 'source', label: 'Rows of the file', out: 0, outGoods: null, outBads: null, left: prepared.rows },
+  ];
   let left = prepared.rows;
-  const step = (kind: WaterfallStep['kind'], label: string, out: number, outGoods: number | null, outBads: number | null): void => {
+  const step = (
+    kind: WaterfallStep['kind'],
+    label: string,
+    out: number,
+    outGoods: number | null,
+    outBads: number | null,
+  ): void => {
     left -= out;
     waterfall.push({ kind, label, out, outGoods, outBads, left });
   };
   counts.excluded.forEach(({ reason, rows, bads }, place) => {
     const byOutcome = place >= content.exclusions.length;
-    step(byOutcome ? 'outcome' : 'exclusion', byOutcome ? 'Excluded by outcome' : reason, rows, byOutcome ? null : goodsOut[place], byOutcome ? null : bads);
+    step(
+      byOutcome ? 'outcome' : 'exclusion',
+      byOutcome ? 'Excluded by outcome' : reason,
+      rows,
+      byOutcome ? null : goodsOut[place],
+      byOutcome ? null : bads,
+    );
   });
   if (content.declined) step('declined', 'Declined: outcome not known', counts.declined, null, null);
   const known = (code: number) => (code === OUT_OF_TIME ? counts.outOfTime : counts.holdOut);
   step('out-of-time', 'Out-of-time', known(OUT_OF_TIME).rows, known(OUT_OF_TIME).goods, known(OUT_OF_TIME).bads);
   step('hold-out', 'Hold-out', known(HOLD_OUT).rows, known(HOLD_OUT).goods, known(HOLD_OUT).bads);
   waterfall.push({ kind: 'development', label: 'Development', out: 0, outGoods: null, outBads: null, left });
-  if (left !== counts.development.rows) throw new Error(`The waterfall leaves ${left} rows and development has ${counts.development.rows}`);
+  if (left !== counts.development.rows)
+    throw new Error(`The waterfall leaves ${left} rows and development has ${counts.development.rows}`);
 
   const told = (part: ResultCounts['development']) => ({ ...part, badRate: badRate(part.goods, part.bads) });
   return {

@@ -17,7 +17,8 @@ export function definitionRoutes(): Route[] {
   return [
     defineRoute(endpoints.readDraft, {
       access: 'signed-in',
-      find: async ({ context, params }) => findDraft(context, await findSample(context.sequelize, params.modelId, params.sampleId)),
+      find: async ({ context, params }) =>
+        findDraft(context, await findSample(context.sequelize, params.modelId, params.sampleId)),
       authorise: ({ person, subject }) => canReadSample(person, subject.sample),
       act({ context, subject, tag }) {
         tag(subject.revision);
@@ -27,7 +28,8 @@ export function definitionRoutes(): Route[] {
     defineRoute(endpoints.saveDraft, {
       access: 'signed-in',
       largestBody: largestDraft,
-      find: async ({ context, params, tx }) => findDraft(context, await findSample(context.sequelize, params.modelId, params.sampleId, tx), tx, true),
+      find: async ({ context, params, tx }) =>
+        findDraft(context, await findSample(context.sequelize, params.modelId, params.sampleId, tx), tx, true),
       authorise: ({ person, subject }) => canDefineSample(person, subject.sample),
       async act({ context, person, subject, body, tx, match, tag }) {
         match(subject.revision);
@@ -39,7 +41,8 @@ export function definitionRoutes(): Route[] {
     defineRoute(endpoints.checkDraft, {
       access: 'signed-in',
       ownTransactions: true,
-      find: async ({ context, params, tx }) => findDraft(context, await findSample(context.sequelize, params.modelId, params.sampleId, tx), tx),
+      find: async ({ context, params, tx }) =>
+        findDraft(context, await findSample(context.sequelize, params.modelId, params.sampleId, tx), tx),
       authorise: ({ person, subject }) => canDefineSample(person, subject.sample),
       act: ({ context, subject }) => checkDraft(context, subject),
     }),

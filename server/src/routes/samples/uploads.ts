@@ -64,9 +64,11 @@ async function relay(context: Context, request: ExpressRequest, response: Expres
     duplex: 'half',
     body: carries ? (Readable.toWeb(request) as ReadableStream) : null,
   };
-  const answer = await answerUpload(context, new Request(`http://${request.headers.host ?? 'localhost'}${request.originalUrl}`, init));
+  const answer = await answerUpload(
+    context,
+    new Request(`http://${request.headers.host ?? 'localhost'}${request.originalUrl}`, init),
+  );
   if (response.destroyed) return;
   answer.headers.forEach((value, name) => response.setHeader(name, value));
   response.status(answer.status).end();
 }
-

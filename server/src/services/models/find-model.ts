@@ -31,7 +31,12 @@ export interface FoundModel extends ModelMembership {
  * find: ({ context, params, tx }) => findModel(context.sequelize, params.modelId, tx),
  * authorise: ({ person, subject }) => canReadModel(person, subject),
  */
-export async function findModel(sequelize: Sequelize, modelId: string, tx: Transaction | null = null, lock = false): Promise<FoundModel | null> {
+export async function findModel(
+  sequelize: Sequelize,
+  modelId: string,
+  tx: Transaction | null = null,
+  lock = false,
+): Promise<FoundModel | null> {
   const [found] = await rows<FoundModel>(
     sequelize,
     `SELECT m.id, m.inventory_number AS "inventoryNumber", m.name, m.purpose, m.product, m.population, m.jurisdiction, m.owner,

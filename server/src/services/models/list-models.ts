@@ -10,7 +10,11 @@ interface Row extends Omit<ModelSummary, 'updatedAt' | 'state'> {
 }
 
 /** Models that a person may see, the latest change first. */
-export async function listModels(sequelize: Sequelize, person: Actor, asked: { search?: string; state?: string }): Promise<ModelList> {
+export async function listModels(
+  sequelize: Sequelize,
+  person: Actor,
+  asked: { search?: string; state?: string },
+): Promise<ModelList> {
   const found = await rows<Row>(
     sequelize,
     `SELECT m.id, m.inventory_number AS "inventoryNumber", m.name, m.product, m.population, m.jurisdiction, m.owner,
@@ -26,6 +30,10 @@ export async function listModels(sequelize: Sequelize, person: Actor, asked: { s
     sequelize,
     found.map(({ id }) => id),
   );
-  const models = found.map((row) => ({ ...row, updatedAt: row.updatedAt.toISOString(), state: states.get(row.id) ?? ('In development' as const) }));
+  const models = found.map((row) => ({
+    ...row,
+    updatedAt: row.updatedAt.toISOString(),
+    state: states.get(row.id) ?? ('In development' as const),
+  }));
   return { models: asked.state ? models.filter(({ state }) => state === asked.state) : models };
 }

@@ -7,7 +7,12 @@ import type { FoundModel } from './find-model';
 import { leadingStates } from './leading-state';
 
 /** A model as its page shows it to this person. */
-export async function presentModel(sequelize: Sequelize, model: FoundModel, person: Actor, tx: Transaction | null = null): Promise<Model> {
+export async function presentModel(
+  sequelize: Sequelize,
+  model: FoundModel,
+  person: Actor,
+  tx: Transaction | null = null,
+): Promise<Model> {
   const members = await rows<Omit<ModelMember, 'addedAt'> & { addedAt: Date }>(
     sequelize,
     `SELECT p.id AS "personId", p.name, p.email, mm.added_at AS "addedAt"
@@ -30,7 +35,17 @@ export async function presentModel(sequelize: Sequelize, model: FoundModel, pers
   };
 }
 
-export const fieldsOf = ({ name, purpose, product, population, jurisdiction, owner, materialityTier, intendedUse, prohibitedUse }: FoundModel) => ({
+export const fieldsOf = ({
+  name,
+  purpose,
+  product,
+  population,
+  jurisdiction,
+  owner,
+  materialityTier,
+  intendedUse,
+  prohibitedUse,
+}: FoundModel) => ({
   name,
   purpose,
   product,

@@ -12,7 +12,12 @@ import { fieldsOf } from './present-model';
 export async function createModel(tx: Transaction, person: Actor, fields: ModelFields): Promise<FoundModel> {
   const { id } = await GovernedModel.create({ ...fields, createdBy: person.id }, { transaction: tx });
   const sequelize = sequelizeOf();
-  await rows(sequelize, 'INSERT INTO model_members (model_id, person_id) VALUES ($1, $2) RETURNING model_id', [id, person.id], tx);
+  await rows(
+    sequelize,
+    'INSERT INTO model_members (model_id, person_id) VALUES ($1, $2) RETURNING model_id',
+    [id, person.id],
+    tx,
+  );
   const model = await found(sequelize, id, tx);
   await appendRecord(tx, {
     actor: person,
@@ -29,14 +34,24 @@ export async function createModel(tx: Transaction, person: Actor, fields: ModelF
 /** Changes what is sent, and records only what is now different. The caller has held If-Match against `model.revision` under its lock. */
 export async function editModel(tx: Transaction, person: Actor, model: FoundModel, edit: ModelEdit): Promise<FoundModel> {
   const before = fieldsOf(model);
-  const changed = (Object.keys(edit) as (keyof ModelFields)[]).filter((field) => edit[field] !== undefined && edit[field] !== before[field]);
+  const changed = (Object.keys(edit) as (keyof ModelFields)[]).filter(
+    (field) => edit[field] !== undefined && edit[field] !== before[field],
+  );
   if (changed.length === 0) return model;
   const pick = (of: Partial<ModelFields>): Partial<ModelFields> => Object.fromEntries(changed.map((field) => [field, of[field]]));
   await GovernedModel.update(
     { ...pick(edit), revision: model.revision + 1, updatedAt: sequelizeOf().fn('now') as unknown as Date },
     { where: { id: model.id, revision: model.revision }, transaction: tx },
   );
-  await appendRecord(tx, { actor: person, action: 'model.edited', entity: 'model', entityId: model.id, modelId: model.id, before: pick(before), after: pick(edit) });
+  await appendRecord(tx, {
+    actor: person,
+    action: 'model.edited',
+    entity: 'model',
+    entityId: model.id,
+    modelId: model.id,
+    before: pick(before),
+    after: pick(edit),
+  });
   return found(sequelizeOf(), model.id, tx);
 }
 
@@ -49,7 +64,8 @@ export async function addMember(tx: Transaction, person: Actor, model: FoundMode
     [personId],
     tx,
   );
-  if (!modeller) throw invalidField('personId', 'no-modeller', 'This is nobody with the role of a modeller. An admin gives roles.');
+  if (!modeller)
+    throw invalidField('personId', 'no-modeller', 'This is nobody with the role of a modeller. An admin gives roles.');
   const added = await rows(
     sequelize,
     'INSERT INTO model_members (model_id, person_id) VALUES ($1, $2) ON CONFLICT DO NOTHING RETURNING person_id',
@@ -58,7 +74,14 @@ export async function addMember(tx: Transaction, person: Actor, model: FoundMode
   );
   if (added.length > 0) {
     const after = { personId, name: modeller.name };
-    await appendRecord(tx, { actor: person, action: 'model.member-added', entity: 'model', entityId: model.id, modelId: model.id, after });
+    await appendRecord(tx, {
+      actor: person,
+      action: 'model.member-added',
+      entity: 'model',
+      entityId: model.id,
+      modelId: model.id,
+      after,
+    });
   }
   return found(sequelize, model.id, tx);
 }
@@ -67,10 +90,23 @@ export async function addMember(tx: Transaction, person: Actor, model: FoundMode
 export async function removeMember(tx: Transaction, person: Actor, model: FoundModel, personId: string): Promise<FoundModel> {
   const sequelize = sequelizeOf();
   if (!model.memberIds.includes(personId)) return model;
-  if (model.memberIds.length === 1) throw conflict('last-member', 'This is the last modeller of the model. Add another one first.');
+  if (model.memberIds.length === 1)
+    throw conflict('last-member', 'This is the last modeller of the model. Add another one first.');
   const [{ name }] = await rows<{ name: string }>(sequelize, 'SELECT name FROM people WHERE id = $1', [personId], tx);
-  await rows(sequelize, 'DELETE FROM model_members WHERE model_id = $1 AND person_id = $2 RETURNING person_id', [model.id, personId], tx);
-  await appendRecord(tx, { actor: person, action: 'model.member-removed', entity: 'model', entityId: model.id, modelId: model.id, before: { personId, name } });
+  await rows(
+    sequelize,
+    'DELETE FROM model_members WHERE model_id = $1 AND person_id = $2 RETURNING person_id',
+    [model.id, personId],
+    tx,
+  );
+  await appendRecord(tx, {
+    actor: person,
+    action: 'model.member-removed',
+    entity: 'model',
+    entityId: model.id,
+    modelId: model.id,
+    before: { personId, name },
+  });
   return found(sequelize, model.id, tx);
 }
 

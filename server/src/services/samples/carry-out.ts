@@ -13,10 +13,19 @@ import { problemItem } from './problem-item';
 
 export type CarriedOut =
   | { readonly problems: ProblemItem[]; readonly content: null; readonly answer: null }
-  | { readonly problems: null; readonly content: SampleDefinitionContent; readonly answer: Extract<PrepareAnswer, { problems: null }> };
+  | {
+      readonly problems: null;
+      readonly content: SampleDefinitionContent;
+      readonly answer: Extract<PrepareAnswer, { problems: null }>;
+    };
 
 /** Defines a draft and carries it out on the rows, in a thread: everything that stands in the way, or the partitions with their counts. */
-export async function carryOut(context: Context, sample: FoundSample, draft: DraftContent, signal?: AbortSignal): Promise<CarriedOut> {
+export async function carryOut(
+  context: Context,
+  sample: FoundSample,
+  draft: DraftContent,
+  signal?: AbortSignal,
+): Promise<CarriedOut> {
   const refused = (problems: ProblemItem[]): CarriedOut => ({ problems, content: null, answer: null });
   if (sample.readingId === null || sample.reading === null || sample.rows === null) {
     return refused([{ code: 'not-read', message: 'The file has not been read yet. Confirm how it is read first.', where: {} }]);

@@ -5,7 +5,11 @@ import type { FoundSample } from './find-sample';
 import { thin } from './profile/kind';
 
 /** Profiles of the columns of a sample that has been read, in the order of the file. */
-export async function profilesOf(sequelize: Sequelize, readingId: string, tx: Transaction | null = null): Promise<ColumnProfile[]> {
+export async function profilesOf(
+  sequelize: Sequelize,
+  readingId: string,
+  tx: Transaction | null = null,
+): Promise<ColumnProfile[]> {
   const stored = await rows<{ profile: ColumnProfile }>(
     sequelize,
     'SELECT profile FROM sample_columns WHERE reading_id = $1 ORDER BY position',
@@ -26,7 +30,9 @@ export async function listColumns(sequelize: Sequelize, sample: FoundSample): Pr
 export function qualityFinding(columns: readonly ColumnProfile[], count: number, duplicateRows: number): string {
   if (columns.length === 0) return 'The file has not been read yet.';
   const stopped = columns.filter(({ flags }) => flags.some(({ weight }) => weight === 'stop')).length;
-  const looked = columns.filter(({ flags }) => flags.some(({ weight }) => weight === 'look') && !flags.some(({ weight }) => weight === 'stop')).length;
+  const looked = columns.filter(
+    ({ flags }) => flags.some(({ weight }) => weight === 'look') && !flags.some(({ weight }) => weight === 'stop'),
+  ).length;
   const parts: string[] = [];
   if (stopped > 0) parts.push(`${stopped} ${stopped === 1 ? 'is' : 'are'} set to not used or kept as hashes`);
   if (looked > 0) parts.push(`${looked} deserve${looked === 1 ? 's' : ''} a look`);

@@ -21,9 +21,17 @@ import { findSample } from './find-sample';
  *
  * @throws Problem 412 when the draft was saved since, 422 with everything that can be seen to stand in the way, 409 while something runs
  */
-export async function confirmDraft(context: Context, tx: Transaction, person: Actor, draft: FoundDraft, revision: number, requestId: string): Promise<Run> {
+export async function confirmDraft(
+  context: Context,
+  tx: Transaction,
+  person: Actor,
+  draft: FoundDraft,
+  revision: number,
+  requestId: string,
+): Promise<Run> {
   const { sample } = draft;
-  if (draft.revision !== revision) throw new Problem(412, 'stale', 'The draft was saved since you read it. Look at it as it is now, then confirm.');
+  if (draft.revision !== revision)
+    throw new Problem(412, 'stale', 'The draft was saved since you read it. Look at it as it is now, then confirm.');
   const { problems } = await presentDraft(context, draft, tx);
   if (problems.length > 0) throw invalid(problems);
   if (sample.busy) throw conflict('busy', 'Something runs on this sample already. Wait for it or cancel it.');
@@ -59,7 +67,10 @@ export async function confirmDefinition(payload: { sampleId: string; revision: n
   run.progress('counting', 0.1);
   const { problems, content, answer } = await carryOut(context, sample, draft.content, run.signal);
   if (problems) {
-    const detail = problems.length === 1 ? problems[0].message : `${problems.length} things stand in the way; the first: ${problems[0].message}`;
+    const detail =
+      problems.length === 1
+        ? problems[0].message
+        : `${problems.length} things stand in the way; the first: ${problems[0].message}`;
     throw new Problem(422, 'not-confirmed', detail, { problems });
   }
   run.progress('storing', 0.8);
@@ -72,10 +83,21 @@ export async function confirmDefinition(payload: { sampleId: string; revision: n
       [sample.id],
       tx,
     );
-    const sha256 = createHash('sha256').update(canonicalize(content) ?? '').digest('hex');
+    const sha256 = createHash('sha256')
+      .update(canonicalize(content) ?? '')
+      .digest('hex');
     const { counts, result, prepared } = answer;
     await SampleDefinition.create(
-      { id, sampleId: sample.id, modelId: sample.modelId, number, content, counts: { ...counts, result }, sha256, createdBy: run.run.personId },
+      {
+        id,
+        sampleId: sample.id,
+        modelId: sample.modelId,
+        number,
+        content,
+        counts: { ...counts, result },
+        sha256,
+        createdBy: run.run.personId,
+      },
       { transaction: tx },
     );
     await storeAssignment(context.sequelize, tx, id, prepared);

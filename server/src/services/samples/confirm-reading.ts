@@ -13,20 +13,38 @@ import type { FoundSample } from './find-sample';
  *
  * @throws Problem 422 for choices that contradict each other, 409 while something runs on the sample
  */
-export async function confirmReading(context: Context, tx: Transaction, person: Actor, sample: FoundSample, choices: ReadingChoices, requestId: string): Promise<Run> {
+export async function confirmReading(
+  context: Context,
+  tx: Transaction,
+  person: Actor,
+  sample: FoundSample,
+  choices: ReadingChoices,
+  requestId: string,
+): Promise<Run> {
   const problems = [];
   const { decimal, thousands } = choices;
   if (thousands === decimal) {
-    problems.push({ code: 'signs-equal', message: 'The decimal sign and the thousands sign are the same. Choose two different ones.', where: { part: 'body', field: 'thousands' } });
+    problems.push({
+      code: 'signs-equal',
+      message: 'The decimal sign and the thousands sign are the same. Choose two different ones.',
+      where: { part: 'body', field: 'thousands' },
+    });
   }
   if (new Set(choices.missing).size !== choices.missing.length) {
-    problems.push({ code: 'token-twice', message: 'A missing token is listed twice.', where: { part: 'body', field: 'missing' } });
+    problems.push({
+      code: 'token-twice',
+      message: 'A missing token is listed twice.',
+      where: { part: 'body', field: 'missing' },
+    });
   }
   if (problems.length > 0) throw invalid(problems);
   if (sample.busy) throw conflict('busy', 'Something runs on this sample already. Wait for it or cancel it.');
   return startRun(context, tx, readSampleJob, {
     // An empty field is missing, whatever else is.
-    payload: { sampleId: sample.id, choices: { ...choices, missing: choices.missing.includes('') ? choices.missing : ['', ...choices.missing] } },
+    payload: {
+      sampleId: sample.id,
+      choices: { ...choices, missing: choices.missing.includes('') ? choices.missing : ['', ...choices.missing] },
+    },
     person,
     modelId: sample.modelId,
     entity: 'sample',

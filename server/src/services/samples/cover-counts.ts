@@ -9,7 +9,15 @@ export function covered(counts: DefinitionCounts): DefinitionCounts {
     waterfall: counts.waterfall.map((step) => (step.kind === 'out-of-time' ? { ...step, outGoods: null, outBads: null } : step)),
     partitions: {
       ...counts.partitions,
-      outOfTime: { covered: true, rows: outOfTime.rows, goods: null, bads: null, indeterminates: null, weight: null, badRate: null },
+      outOfTime: {
+        covered: true,
+        rows: outOfTime.rows,
+        goods: null,
+        bads: null,
+        indeterminates: null,
+        weight: null,
+        badRate: null,
+      },
     },
   };
 }

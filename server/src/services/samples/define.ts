@@ -1,6 +1,12 @@
 import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import { type ColumnProfile, type ColumnRole, singleRoles } from '@tallystone/contracts/samples/columns';
-import type { ColumnTest, DefinedColumn, DraftContent, ExclusionRule, SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
+import type {
+  ColumnTest,
+  DefinedColumn,
+  DraftContent,
+  ExclusionRule,
+  SampleDefinitionContent,
+} from '@tallystone/contracts/samples/definition';
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
 import type { Exclusion, Partition } from '@tallystone/contracts/specification/types';
 import { thin } from './profile/kind';
@@ -29,11 +35,18 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
 
   checkColumns(draft, profiles, say);
   const outcome = holder('outcome');
-  if (!outcome) say('no-outcome', 'No column has the role of the outcome. Choose the one that says how the loan went.', { section: 'columns' });
+  if (!outcome)
+    say('no-outcome', 'No column has the role of the outcome. Choose the one that says how the loan went.', {
+      section: 'columns',
+    });
   else checkOutcome(draft, profiles.get(outcome.column), say);
   const decision = holder('decision');
-  if (draft.declined && !decision) say('no-decision', 'Declined applicants are named by values of a decision column, and no column has that role.', { section: 'outcome' });
-  if (draft.declined && draft.declined.values.length === 0) say('no-declined', 'Say which values of the decision mean declined, or treat nobody as declined.', { section: 'outcome' });
+  if (draft.declined && !decision)
+    say('no-decision', 'Declined applicants are named by values of a decision column, and no column has that role.', {
+      section: 'outcome',
+    });
+  if (draft.declined && draft.declined.values.length === 0)
+    say('no-declined', 'Say which values of the decision mean declined, or treat nobody as declined.', { section: 'outcome' });
   draft.exclusions.forEach((rule, place) => checkRule(rule, place, profiles, say));
   const partition = partitionOf(draft, holder, say);
   if (problems.length > 0 || !outcome || !partition) return { content: null, problems };
@@ -44,7 +57,10 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
       data: { sha256: sample.sha256, ...sample.reading },
       exclusions: draft.exclusions.map(exclusionOf),
       outcome: { column: outcome.column, ...draft.outcome },
-      declined: draft.declined && decision ? { column: decision.column, values: draft.declined.values, method: 'none', bands: 10, uplift: 1.5 } : null,
+      declined:
+        draft.declined && decision
+          ? { column: decision.column, values: draft.declined.values, method: 'none', bands: 10, uplift: 1.5 }
+          : null,
       weight: weight ? { column: weight.column } : null,
       partition,
       columns: draft.columns,
@@ -67,13 +83,19 @@ function checkColumns(draft: DraftContent, profiles: ReadonlyMap<string, ColumnP
     else checkColumn(entry, profile, say);
   }
   const forgotten = [...profiles.keys()].filter((column) => !seen.has(column));
-  if (forgotten.length > 0) say('columns-forgotten', `These columns of the file have no role: ${forgotten.slice(0, 10).join(', ')}.`, { section: 'columns' });
+  if (forgotten.length > 0)
+    say('columns-forgotten', `These columns of the file have no role: ${forgotten.slice(0, 10).join(', ')}.`, {
+      section: 'columns',
+    });
   for (const role of singleRoles) {
     const holders = draft.columns.filter((column) => column.role === role).map(({ column }) => column);
-    if (holders.length > 1) say('role-twice', `Only one column can be the ${role}: ${holders.join(', ')} are.`, { section: 'columns', role });
+    if (holders.length > 1)
+      say('role-twice', `Only one column can be the ${role}: ${holders.join(', ')} are.`, { section: 'columns', role });
   }
   if (!draft.columns.some(({ role }) => role === 'characteristic')) {
-    say('no-characteristic', 'No column has the role of a characteristic: there is nothing to class or fit.', { section: 'columns' });
+    say('no-characteristic', 'No column has the role of a characteristic: there is nothing to class or fit.', {
+      section: 'columns',
+    });
   }
 }
 
@@ -84,20 +106,45 @@ function checkColumn(entry: DefinedColumn, profile: ColumnProfile, say: Say): vo
   const where = { section: 'columns', column };
   const unreadable = profile.flags.find(({ code }) => code === 'unreadable-numbers');
   if (ofValues.includes(role) && kind === 'numeric') {
-    if (profile.kind !== 'numeric') say('not-numeric', `${column} holds no numbers as the file was read. Treat it as categorical, or read the file with other choices.`, where);
-    else if (unreadable) say('unreadable-numbers', `${column}: ${unreadable.finding} Read the file again with these as missing tokens, treat the column as categorical, or do not use it.`, where);
+    if (profile.kind !== 'numeric')
+      say(
+        'not-numeric',
+        `${column} holds no numbers as the file was read. Treat it as categorical, or read the file with other choices.`,
+        where,
+      );
+    else if (unreadable)
+      say(
+        'unreadable-numbers',
+        `${column}: ${unreadable.finding} Read the file again with these as missing tokens, treat the column as categorical, or do not use it.`,
+        where,
+      );
   }
   if (role === 'weight' || role === 'incumbent score') {
     if (kind !== 'numeric') say('not-numeric', `A ${role} is numeric; ${column} is ${kind}.`, where);
   }
   if (role === 'weight' && profile.numeric && profile.numeric.smallest < 0) {
-    say('negative-weight', `${column} has weights below zero, the smallest ${profile.numeric.smallest}. Weights are zero or more.`, where);
+    say(
+      'negative-weight',
+      `${column} has weights below zero, the smallest ${profile.numeric.smallest}. Weights are zero or more.`,
+      where,
+    );
   }
-  if (role === 'weight' && profile.missing > 0) say('missing-weight', `${column} is missing in ${thin(profile.missing)} rows. Every row needs a weight; zero is allowed.`, where);
-  if (role === 'application date' && profile.kind !== 'date') say('not-a-date', `${column} holds no ISO dates (YYYY-MM-DD).`, where);
-  if (role === 'characteristic' && kind === 'date') say('date-characteristic', `${column} is a date: no characteristic as it stands.`, where);
+  if (role === 'weight' && profile.missing > 0)
+    say(
+      'missing-weight',
+      `${column} is missing in ${thin(profile.missing)} rows. Every row needs a weight; zero is allowed.`,
+      where,
+    );
+  if (role === 'application date' && profile.kind !== 'date')
+    say('not-a-date', `${column} holds no ISO dates (YYYY-MM-DD).`, where);
+  if (role === 'characteristic' && kind === 'date')
+    say('date-characteristic', `${column} is a date: no characteristic as it stands.`, where);
   if (profile.hashed && !['identifier', 'not used'].includes(role)) {
-    say('kept-as-hashes', `${column} identifies people and is kept as keyed hashes: it can be an identifier or not used, nothing else.`, where);
+    say(
+      'kept-as-hashes',
+      `${column} identifies people and is kept as keyed hashes: it can be an identifier or not used, nothing else.`,
+      where,
+    );
   }
   if (role === 'characteristic' && profile.distinct === 0) say('all-missing', `${column} is missing in every row.`, where);
   checkSpecials(entry, say);
@@ -108,9 +155,12 @@ function checkSpecials({ column, kind, special }: DefinedColumn, say: Say): void
   for (const { label, values } of special) {
     for (const value of values) {
       const where = { section: 'columns', column, value };
-      if (kind === 'numeric' && typeof value !== 'number') say('special-not-numeric', `${column}: the special code ${JSON.stringify(value)} is no number.`, where);
-      if (kind !== 'numeric' && typeof value !== 'string') say('special-not-text', `${column}: the special code ${value} is to be given as text.`, where);
-      if (seen.has(String(value))) say('special-twice', `${column}: the special code ${value} is listed twice (${label}).`, where);
+      if (kind === 'numeric' && typeof value !== 'number')
+        say('special-not-numeric', `${column}: the special code ${JSON.stringify(value)} is no number.`, where);
+      if (kind !== 'numeric' && typeof value !== 'string')
+        say('special-not-text', `${column}: the special code ${value} is to be given as text.`, where);
+      if (seen.has(String(value)))
+        say('special-twice', `${column}: the special code ${value} is listed twice (${label}).`, where);
       seen.add(String(value));
     }
   }
@@ -127,27 +177,39 @@ function checkOutcome(draft: DraftContent, profile: ColumnProfile | undefined, s
   }
   if (!profile) return;
   if (!profile.valuesComplete) {
-    say('outcome-values', `${profile.column} has ${thin(profile.distinct)} different values: an outcome has a few. Choose another column.`, { section, column: profile.column });
+    say(
+      'outcome-values',
+      `${profile.column} has ${thin(profile.distinct)} different values: an outcome has a few. Choose another column.`,
+      { section, column: profile.column },
+    );
     return;
   }
   const present = profile.mostFrequent.filter(({ value }) => mapped.includes(value));
   if (present.length < 2 && outcome.good.length > 0 && outcome.bad.length > 0) {
     const counts = profile.mostFrequent.map(({ value, count }) => `${JSON.stringify(value)} ${thin(count)}×`).join(', ');
-    say('one-class', `The outcome has one class only: ${counts}. A fit needs goods and bads.`, { section, column: profile.column });
+    say('one-class', `The outcome has one class only: ${counts}. A fit needs goods and bads.`, {
+      section,
+      column: profile.column,
+    });
   }
   // With a decision the rows that it declines need no outcome: only the rows themselves can tell.
   if (draft.declined) return;
   for (const { value, count } of [...profile.mostFrequent, ...profile.missingTokens]) {
     if (mapped.includes(value)) continue;
     const what = value === '' ? 'empty' : JSON.stringify(value);
-    say('outcome-unmapped', `The outcome is ${what} in ${thin(count)} rows: say whether that is good, bad, indeterminate or excluded.`, { section, value, count });
+    say(
+      'outcome-unmapped',
+      `The outcome is ${what} in ${thin(count)} rows: say whether that is good, bad, indeterminate or excluded.`,
+      { section, value, count },
+    );
   }
 }
 
 function checkRule(rule: ExclusionRule, place: number, profiles: ReadonlyMap<string, ColumnProfile>, say: Say): void {
   const where = { section: 'exclusions', rule: place + 1 };
   const name = rule.reason.trim() === '' ? `Exclusion ${place + 1}` : `“${rule.reason.trim()}”`;
-  if (rule.reason.trim() === '') say('no-reason', `${name} has no reason. Say why these rows do not belong in the sample.`, where);
+  if (rule.reason.trim() === '')
+    say('no-reason', `${name} has no reason. Say why these rows do not belong in the sample.`, where);
   if (rule.tests.length === 0) say('no-test', `${name} tests nothing.`, where);
   rule.tests.forEach((test, index) => {
     const at = { ...where, test: index + 1, column: test.column };
@@ -161,14 +223,19 @@ function checkRule(rule: ExclusionRule, place: number, profiles: ReadonlyMap<str
     if (stated.length === 0) say('no-condition', `${name} says nothing about ${column}.`, at);
     if (test.in?.length === 0 || test.notIn?.length === 0) say('no-values', `${name} lists no value of ${column}.`, at);
     const limits = [test.below, test.atMost, test.above, test.atLeast].filter((one) => one !== undefined);
-    if (limits.length > 0 && profile.kind === 'categorical') say('not-comparable', `${name} compares ${column} with a limit, and it holds neither numbers nor dates.`, at);
-    if (profile.kind === 'numeric' && limits.some((one) => typeof one !== 'number')) say('not-comparable', `${name} compares the numbers of ${column} with a date.`, at);
-    if (profile.kind === 'date' && limits.some((one) => typeof one !== 'string')) say('not-comparable', `${name} compares the dates of ${column} with a number.`, at);
-    if (profile.hashed && (test.in || test.notIn)) say('kept-as-hashes', `${name} lists values of ${column}, which are kept as keyed hashes.`, at);
+    if (limits.length > 0 && profile.kind === 'categorical')
+      say('not-comparable', `${name} compares ${column} with a limit, and it holds neither numbers nor dates.`, at);
+    if (profile.kind === 'numeric' && limits.some((one) => typeof one !== 'number'))
+      say('not-comparable', `${name} compares the numbers of ${column} with a date.`, at);
+    if (profile.kind === 'date' && limits.some((one) => typeof one !== 'string'))
+      say('not-comparable', `${name} compares the dates of ${column} with a number.`, at);
+    if (profile.hashed && (test.in || test.notIn))
+      say('kept-as-hashes', `${name} lists values of ${column}, which are kept as keyed hashes.`, at);
   });
 }
 
-const testOf = (test: ColumnTest): ColumnTest => Object.fromEntries(Object.entries(test).filter(([, value]) => value !== undefined)) as ColumnTest;
+const testOf = (test: ColumnTest): ColumnTest =>
+  Object.fromEntries(Object.entries(test).filter(([, value]) => value !== undefined)) as ColumnTest;
 
 function exclusionOf(rule: ExclusionRule): Exclusion {
   const reason = rule.reason.trim();
@@ -182,20 +249,30 @@ function partitionOf(draft: DraftContent, holder: (role: ColumnRole) => DefinedC
   const section = 'partition';
   if (partition.by === 'column') {
     const column = holder('partition');
-    if (!column) say('no-partition-column', 'No column has the role of the partition. Give it to one, or draw hold-out by a seed.', { section });
+    if (!column)
+      say('no-partition-column', 'No column has the role of the partition. Give it to one, or draw hold-out by a seed.', {
+        section,
+      });
     if (partition.development.length === 0) say('no-development', 'No value of the partition means development.', { section });
     const all = [...partition.development, ...partition.holdOut, ...partition.outOfTime];
     for (const value of new Set(all.filter((one, place) => all.indexOf(one) !== place))) {
       say('value-twice', `The partition ${JSON.stringify(value)} means two things at once.`, { section, value });
     }
     if (!column) return null;
-    return { column: column.column, development: partition.development, holdOut: partition.holdOut, outOfTime: partition.outOfTime };
+    return {
+      column: column.column,
+      development: partition.development,
+      holdOut: partition.holdOut,
+      outOfTime: partition.outOfTime,
+    };
   }
   const { seed, holdOutShare, outOfTime } = partition;
   if (!outOfTime) return { seed, holdOutShare, outOfTime: null };
   const date = holder('application date');
-  if (!date) say('no-application-date', 'Out-of-time is taken by date, and no column has the role of the application date.', { section });
+  if (!date)
+    say('no-application-date', 'Out-of-time is taken by date, and no column has the role of the application date.', { section });
   if (outOfTime.from === null && outOfTime.to === null) say('no-period', 'Out-of-time needs a first or a last day.', { section });
-  if (outOfTime.from !== null && outOfTime.to !== null && outOfTime.from > outOfTime.to) say('empty-period', 'Out-of-time ends before it begins.', { section });
+  if (outOfTime.from !== null && outOfTime.to !== null && outOfTime.from > outOfTime.to)
+    say('empty-period', 'Out-of-time ends before it begins.', { section });
   return date ? { seed, holdOutShare, outOfTime: { column: date.column, ...outOfTime } } : null;
 }

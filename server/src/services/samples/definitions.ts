@@ -26,7 +26,10 @@ const select = `
          p.name AS "createdBy"
     FROM sample_definitions d JOIN people p ON p.id = d.created_by`;
 
-async function present(sequelize: Sequelize, { counts: { result: _result, ...counts }, createdAt, ...row }: Row): Promise<Definition> {
+async function present(
+  sequelize: Sequelize,
+  { counts: { result: _result, ...counts }, createdAt, ...row }: Row,
+): Promise<Definition> {
   const state = await outOfTimeState(sequelize, row.id);
   return { ...row, createdAt: createdAt.toISOString(), counts: state === 'covered' ? covered(counts) : counts };
 }
@@ -38,7 +41,11 @@ export async function listDefinitions(sequelize: Sequelize, sample: FoundSample)
   return { definitions: definitions.map(({ content: _content, ...summary }) => summary) };
 }
 
-export async function readDefinition(sequelize: Sequelize, sample: FoundSample, definitionId: string): Promise<Definition | null> {
+export async function readDefinition(
+  sequelize: Sequelize,
+  sample: FoundSample,
+  definitionId: string,
+): Promise<Definition | null> {
   const [row] = await rows<Row>(sequelize, `${select} WHERE d.sample_id = $1 AND d.id = $2`, [sample.id, definitionId]);
   return row ? present(sequelize, row) : null;
 }
@@ -55,7 +62,11 @@ export interface FoundDefinition {
   readonly counts: ResultCounts;
 }
 
-export async function findDefinition(sequelize: Sequelize, definitionId: string, tx: Transaction | null = null): Promise<FoundDefinition | null> {
+export async function findDefinition(
+  sequelize: Sequelize,
+  definitionId: string,
+  tx: Transaction | null = null,
+): Promise<FoundDefinition | null> {
   const [row] = await rows<Omit<FoundDefinition, 'counts'> & { counts: StoredCounts }>(
     sequelize,
     `SELECT d.id, d.sample_id AS "sampleId", d.model_id AS "modelId", d.number, d.content, d.sha256, s.rows, d.counts

@@ -18,7 +18,12 @@ export interface FoundDraft {
 }
 
 /** The draft of a sample; null before the file has been read. `lock` holds it until the transaction ends. */
-export async function findDraft(context: Context, sample: FoundSample | null, tx: Transaction | null = null, lock = false): Promise<FoundDraft | null> {
+export async function findDraft(
+  context: Context,
+  sample: FoundSample | null,
+  tx: Transaction | null = null,
+  lock = false,
+): Promise<FoundDraft | null> {
   if (!sample) return null;
   const [draft] = await rows<Omit<FoundDraft, 'sample'>>(
     context.sequelize,
@@ -33,12 +38,25 @@ export async function findDraft(context: Context, sample: FoundSample | null, tx
 export async function presentDraft(context: Context, draft: FoundDraft, tx: Transaction | null = null): Promise<Draft> {
   const { sample } = draft;
   const profiles = sample.readingId === null ? [] : await profilesOf(context.sequelize, sample.readingId, tx);
-  const problems = sample.reading === null ? [] : define(draft.content, { sha256: sample.sha256, reading: sample.reading, profiles }).problems;
-  return { content: draft.content, revision: draft.revision, savedAt: draft.savedAt.toISOString(), savedBy: draft.savedBy, problems };
+  const problems =
+    sample.reading === null ? [] : define(draft.content, { sha256: sample.sha256, reading: sample.reading, profiles }).problems;
+  return {
+    content: draft.content,
+    revision: draft.revision,
+    savedAt: draft.savedAt.toISOString(),
+    savedBy: draft.savedBy,
+    problems,
+  };
 }
 
 /** Saves the draft as it is now; the caller has held If-Match against its revision. A draft may be incomplete: nothing is refused here. */
-export async function saveDraft(context: Context, tx: Transaction, person: Actor, draft: FoundDraft, content: DraftContent): Promise<FoundDraft> {
+export async function saveDraft(
+  context: Context,
+  tx: Transaction,
+  person: Actor,
+  draft: FoundDraft,
+  content: DraftContent,
+): Promise<FoundDraft> {
   await rows(
     context.sequelize,
     `UPDATE sample_drafts SET content = $2::jsonb, revision = revision + 1, saved_at = now(), saved_by = $3 WHERE sample_id = $1 RETURNING revision`,

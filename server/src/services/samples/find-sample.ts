@@ -63,7 +63,12 @@ export async function findSample(
 ): Promise<FoundSample | null> {
   const model = await findModel(sequelize, modelId, tx);
   if (!model) return null;
-  const [row] = await rows<Row>(sequelize, `${select} WHERE s.model_id = $1 AND s.id = $2 ${lock ? 'FOR UPDATE OF s' : ''}`, [modelId, sampleId], tx);
+  const [row] = await rows<Row>(
+    sequelize,
+    `${select} WHERE s.model_id = $1 AND s.id = $2 ${lock ? 'FOR UPDATE OF s' : ''}`,
+    [modelId, sampleId],
+    tx,
+  );
   return row ? found(row, model) : null;
 }
 

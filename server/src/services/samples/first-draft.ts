@@ -24,13 +24,19 @@ export function firstDraft(profiles: readonly ColumnProfile[]): DraftContent {
       protected: profile.suggestedProtected,
       citation: null,
       special: [],
-      reason: role === 'not used' ? profile.suggestion : role === 'characteristic' && !used ? 'Protected: kept for fairness checks, not for the fit.' : null,
+      reason:
+        role === 'not used'
+          ? profile.suggestion
+          : role === 'characteristic' && !used
+            ? 'Protected: kept for fairness checks, not for the fit.'
+            : null,
     };
   });
   const outcome = profiles.find(({ column }) => columns.some((one) => one.column === column && one.role === 'outcome'));
   const decision = profiles.find(({ column }) => columns.some((one) => one.column === column && one.role === 'decision'));
   const partition = profiles.find(({ column }) => columns.some((one) => one.column === column && one.role === 'partition'));
-  const declined = decision?.mostFrequent.map(({ value }) => value).filter((value) => /^(declined?|rejected?|refused|no|0)$/i.test(value)) ?? [];
+  const declined =
+    decision?.mostFrequent.map(({ value }) => value).filter((value) => /^(declined?|rejected?|refused|no|0)$/i.test(value)) ?? [];
   return {
     columns,
     outcome: outcome ? proposeOutcome(outcome) : { good: [], bad: [], indeterminate: [], excluded: [] },
@@ -41,7 +47,8 @@ export function firstDraft(profiles: readonly ColumnProfile[]): DraftContent {
 }
 
 function byColumn(profile: ColumnProfile): DraftContent['partition'] {
-  const matching = (pattern: RegExp): string[] => profile.mostFrequent.map(({ value }) => value).filter((value) => pattern.test(value));
+  const matching = (pattern: RegExp): string[] =>
+    profile.mostFrequent.map(({ value }) => value).filter((value) => pattern.test(value));
   return {
     by: 'column',
     development: matching(/^(dev|development|train|training)/i),

@@ -37,7 +37,14 @@ export const presentSample = (sample: FoundSample, person: Actor): Sample => ({
 /** Samples of a model, and the person's own files on their way: those of others are nobody's business until they have arrived. */
 export async function listSamples(sequelize: Sequelize, model: FoundModel, person: Actor): Promise<SampleList> {
   const samples = await samplesOf(sequelize, model);
-  const uploads = await rows<Omit<UploadSummary, 'size' | 'offset' | 'startedAt' | 'seenAt'> & { size: string; offset: string; startedAt: Date; seenAt: Date }>(
+  const uploads = await rows<
+    Omit<UploadSummary, 'size' | 'offset' | 'startedAt' | 'seenAt'> & {
+      size: string;
+      offset: string;
+      startedAt: Date;
+      seenAt: Date;
+    }
+  >(
     sequelize,
     `SELECT id, file_name AS "fileName", size, received AS "offset", started_at AS "startedAt", seen_at AS "seenAt"
        FROM raw_files WHERE model_id = $1 AND person_id = $2 AND completed_at IS NULL ORDER BY started_at DESC`,

@@ -17,7 +17,17 @@ const judgedRows = 2000;
 /** Texts that often mean "missing", proposed when they stand in the file. */
 const missingTokens = ['NA', 'N/A', 'n/a', '#N/A', 'NULL', 'null', 'NaN', 'nan', '.', '?', '-'];
 
-const signNames: Record<string, string> = { ',': 'comma', ';': 'semicolon', '\t': 'tab', '|': 'vertical bar', '.': 'point', ' ': 'blank', '\u00a0': 'no-break blank', '\u202f': 'narrow blank', "'": 'apostrophe' };
+const signNames: Record<string, string> = {
+  ',': 'comma',
+  ';': 'semicolon',
+  '\t': 'tab',
+  '|': 'vertical bar',
+  '.': 'point',
+  ' ': 'blank',
+  '\u00a0': 'no-break blank',
+  '\u202f': 'narrow blank',
+  "'": 'apostrophe',
+};
 
 /**
  * The first rows as they would be read, with every doubt about the part that was looked at. What is not chosen is judged from the file and
@@ -93,7 +103,8 @@ function looseTable(text: string, choices: Omit<ReadingChoices, 'missing'>): Tab
   return { header: header?.cells ?? [], rows: rows.map(({ line, cells }, place) => ({ record: place + 1, line, cells })) };
 }
 
-const isCsvError = (error: unknown): error is CsvError => error instanceof Error && 'code' in error && String(error.code).startsWith('CSV_');
+const isCsvError = (error: unknown): error is CsvError =>
+  error instanceof Error && 'code' in error && String(error.code).startsWith('CSV_');
 
 /** For showing only: what is read is decoded strictly by the reader. */
 function textOf(bytes: Buffer, encoding: ReadingChoices['encoding']): string {
@@ -101,7 +112,11 @@ function textOf(bytes: Buffer, encoding: ReadingChoices['encoding']): string {
   return new TextDecoder(name).decode(bytes.subarray(0, 1024 * 1024));
 }
 
-async function problemsOf(bytes: Buffer, whole: boolean, choices: ReadingChoices): Promise<{ problems: ProblemItem[]; records: number }> {
+async function problemsOf(
+  bytes: Buffer,
+  whole: boolean,
+  choices: ReadingChoices,
+): Promise<{ problems: ProblemItem[]; records: number }> {
   // Part of a file is cut after its last complete line, so that the cut itself is no problem.
   const unit = choices.encoding.startsWith('utf-16') ? Buffer.from('\n', 'utf16le') : Buffer.from('\n');
   if (choices.encoding === 'utf-16be') unit.swap16();
@@ -134,11 +149,16 @@ function judgeColumn(column: string, position: number, rows: Table['rows'], choi
   const texts = values.map(({ text }) => text);
   const judged = judgeFormat(texts);
   let warning: ProblemItem | null = null;
-  if (against !== null) warning = { code: 'doubtful-column', message: `${column}: ${against}`, where: { column, position: position + 1 } };
+  if (against !== null)
+    warning = { code: 'doubtful-column', message: `${column}: ${against}`, where: { column, position: position + 1 } };
   else if (kind === 'numeric' && judged.ambiguous && texts.some((text) => /[.,]/.test(text))) {
     const example = texts.find((text) => /[.,]/.test(text)) ?? '';
     const as = numberReader(choices).read(example);
-    warning = { code: 'ambiguous-numbers', message: `${column}: “${example}” is read as ${as}. Confirm the decimal and thousands signs.`, where: { column, position: position + 1 } };
+    warning = {
+      code: 'ambiguous-numbers',
+      message: `${column}: “${example}” is read as ${as}. Confirm the decimal and thousands signs.`,
+      where: { column, position: position + 1 },
+    };
   }
   return { column, kind, against, warning };
 }
@@ -147,17 +167,41 @@ function reasonsFor(chosen: PreviewRequest, choices: ReadingChoices, encodingSta
   const width = table.header.length;
   const alike = table.rows.filter(({ cells }) => cells.length === width).length;
   const all: Preview['reasons'] = [
-    { choice: 'delimiter', reason: `With the ${signNames[choices.delimiter]}, ${thin(alike)} of the first ${thin(table.rows.length)} rows have the header’s ${width} fields.` },
+    {
+      choice: 'delimiter',
+      reason: `With the ${signNames[choices.delimiter]}, ${thin(alike)} of the first ${thin(table.rows.length)} rows have the header’s ${width} fields.`,
+    },
     {
       choice: 'encoding',
-      reason: encodingStated ? 'The file says so itself, by a byte-order mark.' : choices.encoding === 'utf-8' ? 'Its first bytes are UTF-8.' : choices.encoding === 'windows-1252' ? 'Its first bytes are not UTF-8; Windows-1252 is what such files mostly are.' : 'Its first bytes are those of UTF-16.',
+      reason: encodingStated
+        ? 'The file says so itself, by a byte-order mark.'
+        : choices.encoding === 'utf-8'
+          ? 'Its first bytes are UTF-8.'
+          : choices.encoding === 'windows-1252'
+            ? 'Its first bytes are not UTF-8; Windows-1252 is what such files mostly are.'
+            : 'Its first bytes are those of UTF-16.',
     },
-    { choice: 'decimal', reason: choices.decimal === ',' ? 'Most columns of numbers with decimals use the comma.' : 'No column of numbers needs a decimal comma.' },
-    { choice: 'thousands', reason: choices.thousands === null ? 'No column needs a thousands sign.' : `Numbers are written with the ${signNames[choices.thousands]} between thousands.` },
+    {
+      choice: 'decimal',
+      reason:
+        choices.decimal === ','
+          ? 'Most columns of numbers with decimals use the comma.'
+          : 'No column of numbers needs a decimal comma.',
+    },
+    {
+      choice: 'thousands',
+      reason:
+        choices.thousands === null
+          ? 'No column needs a thousands sign.'
+          : `Numbers are written with the ${signNames[choices.thousands]} between thousands.`,
+    },
     { choice: 'trim', reason: 'Blanks around a field that is not quoted carry no meaning.' },
     {
       choice: 'missing',
-      reason: choices.missing.length > 1 ? `Beside the empty field, ${choices.missing.filter((token) => token !== '').join(', ')} stand in the rows looked at.` : 'Only empty fields; no other usual token stands in the rows looked at.',
+      reason:
+        choices.missing.length > 1
+          ? `Beside the empty field, ${choices.missing.filter((token) => token !== '').join(', ')} stand in the rows looked at.`
+          : 'Only empty fields; no other usual token stands in the rows looked at.',
     },
   ];
   return all.filter(({ choice }) => chosen[choice] === undefined);

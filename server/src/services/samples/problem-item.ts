@@ -9,7 +9,10 @@ export function problemItem(problem: ReadingProblem | ReplayProblem): ProblemIte
   const where: Where = {};
   for (const [key, value] of Object.entries(problem.where) as [string, unknown][]) {
     if (value === undefined) continue;
-    if (Array.isArray(value)) where[key] = value.map((one) => (typeof one === 'object' ? `${JSON.stringify(one.value)} ${one.rows}` : String(one))).join(', ');
+    if (Array.isArray(value))
+      where[key] = value
+        .map((one) => (typeof one === 'object' ? `${JSON.stringify(one.value)} ${one.rows}` : String(one)))
+        .join(', ');
     else if (typeof value === 'string' || typeof value === 'number' || typeof value === 'boolean') where[key] = value;
   }
   return { code: problem.code, message: problem.message, where };

@@ -73,25 +73,36 @@ export async function readFile(sampleId: string, choices: ReadingChoices, run: R
   let segment = 0;
   for await (const part of file.segments) {
     signal.throwIfAborted();
-    if (segment === 0) personal = part.columns.map((column, position) => judgePersonal(file.facts().header[position], column, isMissing));
+    if (segment === 0)
+      personal = part.columns.map((column, position) => judgePersonal(file.facts().header[position], column, isMissing));
     duplicates.add(part.columns, part.rows);
     const columns = part.columns.map((values, position) => ({
       position,
-      values: personal[position] ? { codes: values.codes, texts: values.texts.map((text) => (isMissing(text) ? text : hashText(key, text))) } : values,
+      values: personal[position]
+        ? { codes: values.codes, texts: values.texts.map((text) => (isMissing(text) ? text : hashText(key, text))) }
+        : values,
     }));
     await run.write((tx) => storeSegment(sequelize, readingId, segment, columns, tx));
     segment++;
   }
   const facts = file.facts();
   if (facts.problems.length > 0) await refuseFile(run, sampleId, choices, facts.problems);
-  if (facts.sha256 !== sample.sha256) throw new Error(`The stored file of sample ${sampleId} has another fingerprint than the one that arrived`);
+  if (facts.sha256 !== sample.sha256)
+    throw new Error(`The stored file of sample ${sampleId} has another fingerprint than the one that arrived`);
 
   const profiles = await profileAll(run, readingId, facts.header, facts.rows, choices, personal);
   run.progress('storing', 0.98);
   await run.finish(async (tx) => {
     await storeProfiles(context, tx, readingId, profiles);
     await Sample.update(
-      { reading: choices, readingId, rows: facts.rows, columns: facts.header.length, duplicateRows: duplicates.count(), problems: [] },
+      {
+        reading: choices,
+        readingId,
+        rows: facts.rows,
+        columns: facts.header.length,
+        duplicateRows: duplicates.count(),
+        problems: [],
+      },
       { where: { id: sampleId }, transaction: tx },
     );
     await dropReadings(context, tx, sampleId, readingId);
@@ -141,14 +152,21 @@ function judgePersonal(name: string, { codes, texts }: ColumnSegment, isMissing:
   return personalColumn(name, texts, counts, isMissing);
 }
 
-async function refuseFile(run: ReadingRun, sampleId: string, choices: ReadingChoices, problems: readonly ReadingProblem[]): Promise<never> {
+async function refuseFile(
+  run: ReadingRun,
+  sampleId: string,
+  choices: ReadingChoices,
+  problems: readonly ReadingProblem[],
+): Promise<never> {
   const items = problems.map(problemItem);
   await run.write(async (tx) => {
     await Sample.update({ problems: items, reading: choices }, { where: { id: sampleId, readingId: null }, transaction: tx });
     await Sample.update({ problems: items }, { where: { id: sampleId }, transaction: tx });
   });
   const detail = items.length === 1 ? items[0].message : `The file has ${items.length} problems; the first: ${items[0].message}`;
-  throw new Problem(422, 'file-refused', `${detail} Mend the file and upload it again, or change the reading choices.`, { problems: items });
+  throw new Problem(422, 'file-refused', `${detail} Mend the file and upload it again, or change the reading choices.`, {
+    problems: items,
+  });
 }
 
 async function profileAll(
@@ -181,7 +199,12 @@ async function profileAll(
   return profiles;
 }
 
-async function storeProfiles(context: Context, tx: Transaction, readingId: string, profiles: readonly ColumnProfile[]): Promise<void> {
+async function storeProfiles(
+  context: Context,
+  tx: Transaction,
+  readingId: string,
+  profiles: readonly ColumnProfile[],
+): Promise<void> {
   for (const profile of profiles) {
     await rows(
       context.sequelize,

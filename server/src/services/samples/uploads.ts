@@ -61,12 +61,26 @@ export async function beginUpload(context: Context, model: FoundModel, person: A
   const size = Number(headers.get('upload-length') ?? Number.NaN);
   const fileName = nameOf(headers.get('upload-metadata'));
   const problems = [];
-  if (!Number.isSafeInteger(size) || size < 0) problems.push({ code: 'size-missing', message: 'State the size of the file (Upload-Length).', where: { field: 'Upload-Length' } });
-  if (fileName === null) problems.push({ code: 'name-missing', message: 'State the name of the file (Upload-Metadata: filename).', where: { field: 'Upload-Metadata' } });
+  if (!Number.isSafeInteger(size) || size < 0)
+    problems.push({
+      code: 'size-missing',
+      message: 'State the size of the file (Upload-Length).',
+      where: { field: 'Upload-Length' },
+    });
+  if (fileName === null)
+    problems.push({
+      code: 'name-missing',
+      message: 'State the name of the file (Upload-Metadata: filename).',
+      where: { field: 'Upload-Metadata' },
+    });
   if (size === 0) problems.push({ code: 'no-rows', message: 'No rows: the file is empty.', where: {} });
   if (problems.length > 0) throw invalid(problems);
   if (size > fileLimits.bytes) {
-    throw new Problem(413, problemCodes.tooLarge, `The file has ${gib(size)} GiB; at most 1 GiB can be brought in. Split it, or leave out columns that are not needed.`);
+    throw new Problem(
+      413,
+      problemCodes.tooLarge,
+      `The file has ${gib(size)} GiB; at most 1 GiB can be brought in. Split it, or leave out columns that are not needed.`,
+    );
   }
   refuseByName(fileName as string);
   return inTransaction(context.sequelize, async (tx) => {
@@ -76,12 +90,18 @@ export async function beginUpload(context: Context, model: FoundModel, person: A
       [model.id, keptDays],
       tx,
     );
-    const unfinished = await RawFile.count({ where: { modelId: model.id, personId: person.id, completedAt: null }, transaction: tx });
+    const unfinished = await RawFile.count({
+      where: { modelId: model.id, personId: person.id, completedAt: null },
+      transaction: tx,
+    });
     if (unfinished >= mostUnfinished) {
       throw conflict('too-many-uploads', `You have ${unfinished} unfinished uploads here. Finish or drop one of them first.`);
     }
     const id = randomUUID();
-    await RawFile.create({ id, modelId: model.id, personId: person.id, fileName: fileName as string, size: String(size) }, { transaction: tx });
+    await RawFile.create(
+      { id, modelId: model.id, personId: person.id, fileName: fileName as string, size: String(size) },
+      { transaction: tx },
+    );
     return { id };
   });
 }
@@ -90,7 +110,12 @@ function openServer(context: Context): Server {
   const { sequelize, config } = context;
   return new Server({
     path: '/api/models',
-    datastore: new UploadStore({ sequelize, key: config.keys.rawFiles.subarray(0, 32), inspect: refuseByContent, complete: receiveSample }),
+    datastore: new UploadStore({
+      sequelize,
+      key: config.keys.rawFiles.subarray(0, 32),
+      inspect: refuseByContent,
+      complete: receiveSample,
+    }),
     maxSize: fileLimits.bytes,
     allowedOrigins: [],
     relativeLocation: true,
@@ -99,7 +124,11 @@ function openServer(context: Context): Server {
     namingFunction: (request) => request.headers.get('x-upload-id') ?? randomUUID(),
     getFileIdFromRequest: (_request, last) => last,
     onResponseError: (_request, error) => {
-      if (error instanceof Problem) return { status_code: error.status, body: JSON.stringify({ code: error.code, detail: error.detail, problems: error.problems }) };
+      if (error instanceof Problem)
+        return {
+          status_code: error.status,
+          body: JSON.stringify({ code: error.code, detail: error.detail, problems: error.problems }),
+        };
       if (!('status_code' in error)) context.log.error({ err: error }, 'an upload failed');
       return undefined;
     },
@@ -141,17 +170,24 @@ async function receiveSample(tx: Transaction, file: ArrivedFile): Promise<void> 
 function refuseByName(fileName: string): void {
   const kind = /\.(xlsx?|xlsm|ods|zip|gz|7z|pdf|parquet|docx?)$/i.exec(fileName)?.[1].toLowerCase();
   if (kind === undefined) return;
-  const what = /^(xls|ods)/.test(kind) ? 'This is a spreadsheet file; export it as CSV.' : `A .${kind} file is not read here; bring in a CSV file.`;
+  const what = /^(xls|ods)/.test(kind)
+    ? 'This is a spreadsheet file; export it as CSV.'
+    : `A .${kind} file is not read here; bring in a CSV file.`;
   throw new Problem(415, problemCodes.unsupported, what);
 }
 
 /** By the first bytes, whatever the name says. `whole` = the file ends with them. */
 function refuseByContent(head: Buffer, whole: boolean): void {
-  const refused = sniff(head.subarray(0, 65_536)).problems.find(({ code }) => ['spreadsheet', 'archive', 'pdf', 'binary'].includes(code));
+  const refused = sniff(head.subarray(0, 65_536)).problems.find(({ code }) =>
+    ['spreadsheet', 'archive', 'pdf', 'binary'].includes(code),
+  );
   if (refused) throw new Problem(415, problemCodes.unsupported, refused.message);
   if (!whole) return;
   // A byte-order mark and zero bytes of UTF-16 are no content.
-  const content = head.toString('latin1').replace(/^(\xef\xbb\xbf|\xff\xfe|\xfe\xff)/, '').replaceAll('\0', '');
+  const content = head
+    .toString('latin1')
+    .replace(/^(\xef\xbb\xbf|\xff\xfe|\xfe\xff)/, '')
+    .replaceAll('\0', '');
   if (content.trim() === '') throw invalid([{ code: 'no-rows', message: 'No rows: the file is empty.', where: {} }]);
   const header = /^\s*[^\r\n]*(\r\n|\r|\n|$)/.exec(content)?.[0] ?? '';
   const quotesClosed = (header.match(/"/g)?.length ?? 0) % 2 === 0;
@@ -164,7 +200,11 @@ function nameOf(metadata: string | null): string | null {
   try {
     const name = Metadata.parse(metadata ?? undefined).filename?.trim();
     // Only the last part of a path, without what a terminal or a header would act upon.
-    const plain = name?.split(/[\\/]/).pop()?.replace(/\p{Cc}/gu, '').slice(0, 255);
+    const plain = name
+      ?.split(/[\\/]/)
+      .pop()
+      ?.replace(/\p{Cc}/gu, '')
+      .slice(0, 255);
     return plain ? plain : null;
   } catch {
     return null;
@@ -178,9 +218,16 @@ function problemOfResponse(status: number, body: string): Problem {
   } catch {
     // A message of the protocol, in words.
   }
-  if (status === 404 || status === 410) return new Problem(404, problemCodes.notFound, 'This upload is not there any more. Begin it again.');
-  if (status === 409) return new Problem(409, problemCodes.conflict, 'The server has another offset for this upload. Ask for it and go on from there.');
-  if (status >= 500) return new Problem(500, problemCodes.internal, 'The upload failed on our side. What has arrived is kept; go on from there.');
+  if (status === 404 || status === 410)
+    return new Problem(404, problemCodes.notFound, 'This upload is not there any more. Begin it again.');
+  if (status === 409)
+    return new Problem(
+      409,
+      problemCodes.conflict,
+      'The server has another offset for this upload. Ask for it and go on from there.',
+    );
+  if (status >= 500)
+    return new Problem(500, problemCodes.internal, 'The upload failed on our side. What has arrived is kept; go on from there.');
   return new Problem(status, problemCodes.malformed, body.trim());
 }
 

@@ -25,7 +25,10 @@ export function proposeOutcome(profile: ColumnProfile): DraftOutcome {
 }
 
 /** The suggested outcome per row for the check on leakage; null where no column suggests itself or its values say nothing. */
-export async function guessOutcome(profiles: readonly ColumnProfile[], read: (position: number) => Promise<TextColumn>): Promise<OutcomeCodes | null> {
+export async function guessOutcome(
+  profiles: readonly ColumnProfile[],
+  read: (position: number) => Promise<TextColumn>,
+): Promise<OutcomeCodes | null> {
   const profile = profiles.find(({ suggestedRole }) => suggestedRole === 'outcome');
   if (!profile) return null;
   const { good, bad } = proposeOutcome(profile);

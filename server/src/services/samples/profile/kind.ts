@@ -69,7 +69,11 @@ function doubtful(values: readonly Counted[], total: number, numbers: number, re
     const dayFirst = pairs.some(([first]) => first > 12);
     const monthFirst = pairs.some(([, second]) => second > 12);
     const order =
-      dayFirst && !monthFirst ? 'with the day first' : monthFirst && !dayFirst ? 'with the month first' : 'day first or month first cannot be told';
+      dayFirst && !monthFirst
+        ? 'with the day first'
+        : monthFirst && !dayFirst
+          ? 'with the month first'
+          : 'day first or month first cannot be told';
     const finding = `Dates such as ${dates[0].text} (${order}). Only ISO dates (YYYY-MM-DD) are used as dates; write them so in the file to split by date.`;
     return { against: finding, flags: [{ code: 'doubtful-dates', weight: 'look', finding }] };
   }
@@ -79,7 +83,10 @@ function doubtful(values: readonly Counted[], total: number, numbers: number, re
   );
   if (judged.numbers >= mostlyNumbers * total) {
     const { decimal, thousands } = judged.format;
-    const sign = thousands === null ? '' : ` and “${thousands === '\u00a0' || thousands === '\u202f' ? 'narrow blank' : thousands}” between thousands`;
+    const sign =
+      thousands === null
+        ? ''
+        : ` and “${thousands === '\u00a0' || thousands === '\u202f' ? 'narrow blank' : thousands}” between thousands`;
     const example = values.find(({ text }) => Number.isNaN(reader.read(text)))?.text ?? '';
     const finding = `Numbers written with “${decimal}” as decimal sign${sign} (${example}): change the reading choices to use them as numbers.`;
     return { against: finding, flags: [{ code: 'numbers-as-text', weight: 'look', finding }] };

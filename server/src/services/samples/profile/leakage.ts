@@ -14,7 +14,12 @@ const groups = 20;
  * Whether a column predicts the outcome far too well for something known at application. Information value over about twenty groups of
  * equal size (numbers) or over the categories, missing in a group of its own; smoothed by 0.5 where a group lacks one class.
  */
-export function suspectLeakage(column: TextColumn, isMissing: (text: string) => boolean, outcome: OutcomeCodes, reader: NumberReader | null): ColumnFlag | null {
+export function suspectLeakage(
+  column: TextColumn,
+  isMissing: (text: string) => boolean,
+  outcome: OutcomeCodes,
+  reader: NumberReader | null,
+): ColumnFlag | null {
   const goods = new Float64Array(column.texts.length);
   const bads = new Float64Array(column.texts.length);
   column.codes.forEach((code, row) => {
@@ -22,7 +27,8 @@ export function suspectLeakage(column: TextColumn, isMissing: (text: string) => 
     else if (outcome[row] === 0) bads[code]++;
   });
   const grouped = groupTexts(column.texts, isMissing, goods, bads, reader);
-  const total = (list: readonly { goods: number; bads: number }[], key: 'goods' | 'bads'): number => list.reduce((sum, group) => sum + group[key], 0);
+  const total = (list: readonly { goods: number; bads: number }[], key: 'goods' | 'bads'): number =>
+    list.reduce((sum, group) => sum + group[key], 0);
   if (total(grouped, 'goods') === 0 || total(grouped, 'bads') === 0 || grouped.length < 2) return null;
   const { informationValue } = weightOfEvidence(
     grouped.map((group) => group.goods),

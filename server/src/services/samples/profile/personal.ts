@@ -14,9 +14,12 @@ const words = (name: string): string =>
     .toLowerCase();
 
 const emailAddress = /^[^@\s,;]{1,64}@[^@\s,;]+\.[\p{L}]{2,}$/u;
-const personName = /\b(first|last|middle|sur|full|family|given|maiden|applicant|customer|borrower) ?names?\b|^names?$|\bsurname\b|\bforename\b/;
-const nationalNumber = /\b(ssn|social security|national (id|insurance)|nino|passport|tax (id|number)|iban|driving licen[cs]e|phone|telephone|mobile|e ?mail)\b/;
-const identifierName = /\b(id|ids|uuid|guid|ref|reference|identifier|key)$|\b(application|account|customer|loan|contract|case|record|row) (no|nr|number)\b/;
+const personName =
+  /\b(first|last|middle|sur|full|family|given|maiden|applicant|customer|borrower) ?names?\b|^names?$|\bsurname\b|\bforename\b/;
+const nationalNumber =
+  /\b(ssn|social security|national (id|insurance)|nino|passport|tax (id|number)|iban|driving licen[cs]e|phone|telephone|mobile|e ?mail)\b/;
+const identifierName =
+  /\b(id|ids|uuid|guid|ref|reference|identifier|key)$|\b(application|account|customer|loan|contract|case|record|row) (no|nr|number)\b/;
 
 /** Share of rows that must differ before values look like names of single applicants. */
 const nearUnique = 0.95;
@@ -27,7 +30,12 @@ const enoughRows = 30;
  * Whether a column identifies people: decided on the first segment, before anything of it is stored, so that what identifies is never kept
  * in the clear. `counts` are rows per distinct text.
  */
-export function personalColumn(name: string, texts: readonly string[], counts: ArrayLike<number>, isMissing: (text: string) => boolean): Personal | null {
+export function personalColumn(
+  name: string,
+  texts: readonly string[],
+  counts: ArrayLike<number>,
+  isMissing: (text: string) => boolean,
+): Personal | null {
   let rows = 0;
   let distinct = 0;
   let emails = 0;
@@ -43,13 +51,21 @@ export function personalColumn(name: string, texts: readonly string[], counts: A
   });
   if (distinct === 0) return null;
   const spoken = words(name);
-  if (emails * 2 > distinct) return { kind: 'email', finding: `${percent(emails / distinct)} of its values are e-mail addresses.` };
-  if (personName.test(spoken) && numbers === 0) return { kind: 'name', finding: 'Its heading says that it holds names of people.' };
-  if (nationalNumber.test(spoken)) return { kind: 'identifier', finding: 'Its heading says that it holds numbers or addresses of people.' };
+  if (emails * 2 > distinct)
+    return { kind: 'email', finding: `${percent(emails / distinct)} of its values are e-mail addresses.` };
+  if (personName.test(spoken) && numbers === 0)
+    return { kind: 'name', finding: 'Its heading says that it holds names of people.' };
+  if (nationalNumber.test(spoken))
+    return { kind: 'identifier', finding: 'Its heading says that it holds numbers or addresses of people.' };
   const unique = rows >= enoughRows && distinct >= nearUnique * rows;
-  if (unique && identifierName.test(spoken)) return { kind: 'identifier', finding: `Its heading says identifier, and ${percent(distinct / rows)} of the values differ.` };
+  if (unique && identifierName.test(spoken))
+    return { kind: 'identifier', finding: `Its heading says identifier, and ${percent(distinct / rows)} of the values differ.` };
   const dates = texts.filter((text) => /^\d{4}-\d{2}-\d{2}/.test(text)).length;
-  if (unique && numbers === 0 && dates * 2 < distinct) return { kind: 'identifier', finding: `${percent(distinct / rows)} of its texts differ: each applicant has one of their own.` };
+  if (unique && numbers === 0 && dates * 2 < distinct)
+    return {
+      kind: 'identifier',
+      finding: `${percent(distinct / rows)} of its texts differ: each applicant has one of their own.`,
+    };
   // Long whole numbers, all different, without a meaning of size.
   if (unique && distinct === rows && wholeNumbers === distinct && texts.every((text) => isMissing(text) || text.length >= 9)) {
     return { kind: 'identifier', finding: 'Long whole numbers, all of them different.' };
@@ -63,4 +79,5 @@ const percent = (share: number): string => `${(Math.floor(share * 1000) / 10).to
  * A keyed hash in place of an identifying text: HMAC-SHA-256 (RFC 2104), 128 bits in base64url. Equal texts stay equal within the
  * installation, and nobody without the key can try texts against it.
  */
-export const hashText = (key: Buffer, text: string): string => createHmac('sha256', key).update(text, 'utf8').digest().subarray(0, 16).toString('base64url');
+export const hashText = (key: Buffer, text: string): string =>
+  createHmac('sha256', key).update(text, 'utf8').digest().subarray(0, 16).toString('base64url');

@@ -45,11 +45,16 @@ export function profileColumn(
   const flags: ColumnFlag[] = [...shape(rows, missing, ranked, judged.kind), ...judged.flags];
   if (specialSuspects.length > 0) {
     const codes = specialSuspects.map(({ value, count }) => `${value.replace('-', '\u2212')} (${thin(count)})`).join(', ');
-    flags.push({ code: 'special-code-suspected', weight: 'look', finding: `May be special codes rather than amounts: ${codes}.` });
+    flags.push({
+      code: 'special-code-suspected',
+      weight: 'look',
+      finding: `May be special codes rather than amounts: ${codes}.`,
+    });
   }
   if (personal) flags.push(...personalFlags(personal, rows - missing, all.length));
   const suggestion = suggestRole({ name, kind: judged.kind, rows, missing, ranked, personal, flags });
-  if (suggestion.protectedFinding) flags.push({ code: 'looks-like-protected', weight: 'look', finding: suggestion.protectedFinding });
+  if (suggestion.protectedFinding)
+    flags.push({ code: 'looks-like-protected', weight: 'look', finding: suggestion.protectedFinding });
   return {
     position,
     column: name,
@@ -101,18 +106,30 @@ function shape(rows: number, missing: number, ranked: readonly Counted[], kind: 
     const weight = missing > 0 ? ('look' as const) : ('stop' as const);
     flags.push({ code: 'constant', weight, finding: `Always ${JSON.stringify(first.text.slice(0, 60))}${rest}.` });
   } else if (first.count >= 0.99 * known) {
-    flags.push({ code: 'near-constant', weight: 'look', finding: `${share(first.count, known)} of the values are ${JSON.stringify(first.text.slice(0, 60))}.` });
+    flags.push({
+      code: 'near-constant',
+      weight: 'look',
+      finding: `${share(first.count, known)} of the values are ${JSON.stringify(first.text.slice(0, 60))}.`,
+    });
   }
-  if (missing >= 0.5 * rows) flags.push({ code: 'mostly-missing', weight: 'look', finding: `${share(missing, rows)} of the values are missing.` });
+  if (missing >= 0.5 * rows)
+    flags.push({ code: 'mostly-missing', weight: 'look', finding: `${share(missing, rows)} of the values are missing.` });
   if (kind === 'categorical' && known >= 30 && ranked.length >= 0.95 * known) {
-    flags.push({ code: 'near-unique', weight: 'stop', finding: `${thin(ranked.length)} different texts in ${thin(known)} rows: no group has any size.` });
+    flags.push({
+      code: 'near-unique',
+      weight: 'stop',
+      finding: `${thin(ranked.length)} different texts in ${thin(known)} rows: no group has any size.`,
+    });
   }
   return flags;
 }
 
 function personalFlags(personal: Personal, known: number, distinct: number): ColumnFlag[] {
-  const code = personal.kind === 'email' ? 'looks-like-email' : personal.kind === 'name' ? 'looks-like-name' : 'looks-like-identifier';
-  const flags: ColumnFlag[] = [{ code, weight: 'stop', finding: `${personal.finding} Kept as keyed hashes; the values are shown nowhere.` }];
+  const code =
+    personal.kind === 'email' ? 'looks-like-email' : personal.kind === 'name' ? 'looks-like-name' : 'looks-like-identifier';
+  const flags: ColumnFlag[] = [
+    { code, weight: 'stop', finding: `${personal.finding} Kept as keyed hashes; the values are shown nowhere.` },
+  ];
   if (personal.kind === 'identifier' && distinct < known) {
     const finding = `${thin(known - distinct)} rows repeat an identifier that stood before: one applicant may be in the file several times.`;
     flags.push({ code: 'repeated-identifiers', weight: 'look', finding });

@@ -8,10 +8,18 @@ import { suspectLeakage } from './leakage';
 import { hashText, personalColumn } from './personal';
 import { profileColumn } from './profile-column';
 
-const choices: ReadingChoices = { delimiter: ',', encoding: 'utf-8', decimal: '.', thousands: null, trim: true, missing: ['', 'NA'] };
+const choices: ReadingChoices = {
+  delimiter: ',',
+  encoding: 'utf-8',
+  decimal: '.',
+  thousands: null,
+  trim: true,
+  missing: ['', 'NA'],
+};
 const column = (values: readonly string[]): TextColumn => sourceOf({ c: values }).column('c') as TextColumn;
 const profile = (values: readonly string[], name = 'c', chosen = choices) => profileColumn(name, 0, column(values), chosen, null);
-const codes = (values: readonly string[], name = 'c', chosen = choices): string[] => profile(values, name, chosen).flags.map((flag) => flag.code);
+const codes = (values: readonly string[], name = 'c', chosen = choices): string[] =>
+  profile(values, name, chosen).flags.map((flag) => flag.code);
 const many = (count: number, make: (k: number) => string): string[] => Array.from({ length: count }, (_, k) => make(k));
 
 describe('what the quality table says of a column', () => {
@@ -59,12 +67,23 @@ describe('what the quality table says of a column', () => {
 
   it('asks for the reading choices where numbers are written otherwise', () => {
     expect(codes(many(40, (k) => `${k},5`))).toContain('numbers-as-text');
-    expect(codes(many(40, (k) => `${k},5`), 'c', { ...choices, decimal: ',' })).toEqual([]);
+    expect(
+      codes(
+        many(40, (k) => `${k},5`),
+        'c',
+        { ...choices, decimal: ',' },
+      ),
+    ).toEqual([]);
   });
 
   it('asks day or month first, and takes ISO dates as certain', () => {
-    expect(profile(many(40, (k) => `0${(k % 9) + 1}/04/2024`)).flags[0].finding).toContain('day first or month first cannot be told');
-    expect(profile(many(40, (k) => `2024-04-${String((k % 30) + 1).padStart(2, '0')}`))).toMatchObject({ kind: 'date', date: { first: '2024-04-01', last: '2024-04-30' } });
+    expect(profile(many(40, (k) => `0${(k % 9) + 1}/04/2024`)).flags[0].finding).toContain(
+      'day first or month first cannot be told',
+    );
+    expect(profile(many(40, (k) => `2024-04-${String((k % 30) + 1).padStart(2, '0')}`))).toMatchObject({
+      kind: 'date',
+      date: { first: '2024-04-01', last: '2024-04-30' },
+    });
     expect([isIsoDate('2023-02-29'), isIsoDate('2024-02-29'), isIsoDate('2024-13-01')]).toEqual([false, true, false]);
   });
 
@@ -72,7 +91,10 @@ describe('what the quality table says of a column', () => {
     const withCode = profile([...many(300, (k) => String(k % 120)), ...many(20, () => '-999')]);
     expect(withCode.specialSuspects.map(({ value }) => value)).toEqual(['-999']);
     expect(profile(many(1000, (k) => String(k % 100))).specialSuspects).toEqual([]);
-    expect(profile([...many(300, (k) => String(k % 40)), ...many(20, () => '9999'), ...many(9, () => '9998')]).specialSuspects[0].value).toBe('9999');
+    expect(
+      profile([...many(300, (k) => String(k % 40)), ...many(20, () => '9999'), ...many(9, () => '9998')]).specialSuspects[0]
+        .value,
+    ).toBe('9999');
   });
 
   it('suggests roles from the headings of a lender', () => {
@@ -95,15 +117,40 @@ describe('columns that identify people', () => {
     return personalColumn(name, texts, counts, (text) => text === '')?.kind ?? null;
   };
   it('are found by their values or their heading', () => {
-    expect(found('contact', many(40, (k) => `someone${k}@saltmarsh.example`))).toBe('email');
+    expect(
+      found(
+        'contact',
+        many(40, (k) => `someone${k}@saltmarsh.example`),
+      ),
+    ).toBe('email');
     expect(found('last_name', ['Marsh', 'Reed'])).toBe('name');
-    expect(found('application_id', many(40, (k) => `SM-${k}`))).toBe('identifier');
+    expect(
+      found(
+        'application_id',
+        many(40, (k) => `SM-${k}`),
+      ),
+    ).toBe('identifier');
     expect(found('passport', ['X1'])).toBe('identifier');
   });
   it('are not amounts, dates or categories', () => {
-    expect(found('income', many(400, (k) => (k * 13.37).toFixed(2)))).toBeNull();
-    expect(found('applied_on', many(40, (k) => `2024-01-${String((k % 28) + 1).padStart(2, '0')}`))).toBeNull();
-    expect(found('region', many(40, (k) => ['north', 'south'][k % 2]))).toBeNull();
+    expect(
+      found(
+        'income',
+        many(400, (k) => (k * 13.37).toFixed(2)),
+      ),
+    ).toBeNull();
+    expect(
+      found(
+        'applied_on',
+        many(40, (k) => `2024-01-${String((k % 28) + 1).padStart(2, '0')}`),
+      ),
+    ).toBeNull();
+    expect(
+      found(
+        'region',
+        many(40, (k) => ['north', 'south'][k % 2]),
+      ),
+    ).toBeNull();
   });
   it('keep equal values equal under the key, and only under the key', () => {
     const key = Buffer.alloc(32, 7);

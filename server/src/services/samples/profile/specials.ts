@@ -28,7 +28,11 @@ export function suspectSpecials(numbers: readonly CountedNumber[]): ColumnProfil
       if (one.count < enough || !(nines || (negative && Number.isInteger(one.value)) || (far && isCodeLike(one.value)))) return;
       // A run of whole numbers that simply ends at 99 is a range, not a code.
       if (nines && !negative && gap <= Math.max(1, spread * 0.05)) return;
-      const reason = negative ? 'negative where every other value is not' : nines ? 'written in nines at the end of the range' : 'far from every other value';
+      const reason = negative
+        ? 'negative where every other value is not'
+        : nines
+          ? 'written in nines at the end of the range'
+          : 'far from every other value';
       suspects.push({ value: one.text, count: one.count, reason: `${thin(one.count)} times, ${reason}.` });
     }
   };

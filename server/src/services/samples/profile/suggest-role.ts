@@ -32,24 +32,58 @@ const spoken = (name: string): string =>
 const protectedWords =
   /\b(gender|sex|race|ethnic\w*|religio\w*|nationalit\w*|citizenship|marital|married|disab\w*|pregnan\w*|sexual orientation|birth ?date|date of birth|dob)\b/;
 
-const single = (heading: RegExp, mostValues: number | null, kinds: readonly ColumnKind[] | null) => ({ heading, mostValues, kinds });
+const single = (heading: RegExp, mostValues: number | null, kinds: readonly ColumnKind[] | null) => ({
+  heading,
+  mostValues,
+  kinds,
+});
 
 /** In order: the first that fits names the role. Single roles are kept to one column later. */
 const byHeading: readonly [ColumnRole, ReturnType<typeof single>, string][] = [
-  ['outcome', single(/^(bad|good bad|good|outcome|default|defaulted|default flag|bad flag|target|performance)$/, 10, null), 'Its heading names an outcome and it has few values.'],
-  ['decision', single(/\b(decision|decided|accepted|approved|declined|accept)\b/, 6, null), 'Its heading names a decision and it has few values.'],
-  ['partition', single(/^(partition|part|split|sample|sample part|set)$/, 6, ['categorical']), 'Its heading names a partition and it has few values.'],
-  ['weight', single(/^(weight|weights|w|sampling weight|sample weight|observation weight)$/, null, ['numeric']), 'Its heading names a weight.'],
-  ['application date', single(/\b(application|applied|apply|app) ?(date|on|at|day)?\b|^date$/, null, ['date']), 'A date whose heading names the application.'],
-  ['incumbent score', single(/\b(incumbent|current|old|existing|previous|legacy) ?score\b|^score$/, null, ['numeric']), 'Its heading names a score that exists already.'],
-  ['group key', single(/\b(household|group|customer|client|borrower) (id|key|no|number)\b/, null, null), 'Its heading names a group of applications.'],
+  [
+    'outcome',
+    single(/^(bad|good bad|good|outcome|default|defaulted|default flag|bad flag|target|performance)$/, 10, null),
+    'Its heading names an outcome and it has few values.',
+  ],
+  [
+    'decision',
+    single(/\b(decision|decided|accepted|approved|declined|accept)\b/, 6, null),
+    'Its heading names a decision and it has few values.',
+  ],
+  [
+    'partition',
+    single(/^(partition|part|split|sample|sample part|set)$/, 6, ['categorical']),
+    'Its heading names a partition and it has few values.',
+  ],
+  [
+    'weight',
+    single(/^(weight|weights|w|sampling weight|sample weight|observation weight)$/, null, ['numeric']),
+    'Its heading names a weight.',
+  ],
+  [
+    'application date',
+    single(/\b(application|applied|apply|app) ?(date|on|at|day)?\b|^date$/, null, ['date']),
+    'A date whose heading names the application.',
+  ],
+  [
+    'incumbent score',
+    single(/\b(incumbent|current|old|existing|previous|legacy) ?score\b|^score$/, null, ['numeric']),
+    'Its heading names a score that exists already.',
+  ],
+  [
+    'group key',
+    single(/\b(household|group|customer|client|borrower) (id|key|no|number)\b/, null, null),
+    'Its heading names a group of applications.',
+  ],
   ['segment', single(/^segment\b|\bsegment$/, 30, ['categorical']), 'Its heading names a segment.'],
 ];
 
 export function suggestRole(evidence: RoleEvidence): RoleSuggestion {
   const heading = spoken(evidence.name);
   const isProtected = protectedWords.test(heading);
-  const age = /\bage\b/.test(heading) && !/\b(account|loan|vehicle|car|bureau|file|record) age\b|\bage of (account|loan|vehicle|car|file)\b/.test(heading);
+  const age =
+    /\bage\b/.test(heading) &&
+    !/\b(account|loan|vehicle|car|bureau|file|record) age\b|\bage of (account|loan|vehicle|car|file)\b/.test(heading);
   const protectedFinding = isProtected
     ? 'Its heading names an attribute that the law of many places protects: barred from any fit unless compliance permits it.'
     : age

@@ -1,0 +1,143 @@
+import { DestroyRef, Injectable, computed, inject, signal } from '@angular/core';
+import { Problem, asProblem } from '../../../core/http/problem';
+import { isStale } from '../../../core/http/etag';
+import { Draft, DraftCheck, DraftContent, Samples } from './samples';
+
+export type SaveState = 'saved' | 'unsaved' | 'saving' | 'stale' | 'failed';
+
+const saveAfterMs = 700;
+
+/**
+ * The draft of a sample's definition under edit, shared by the pages of one sample. Saves by itself a moment after the last change, under
+ * the tag that was read; when someone else saved meanwhile it stops and asks: theirs or mine.
+ */
+@Injectable()
+export class DraftStore {
+  private readonly samples = inject(Samples);
+  private readonly draft = signal<Draft | null>(null);
+  private readonly mine = signal<DraftContent | null>(null);
+  private readonly state = signal<SaveState>('saved');
+  private readonly failure = signal<Problem | null>(null);
+  private readonly result = signal<DraftCheck | null>(null);
+  private readonly isChecking = signal(false);
+  private etag = '';
+  private place: { modelId: string; sampleId: string } | null = null;
+  private timer: ReturnType<typeof setTimeout> | null = null;
+  private saving: Promise<void> | null = null;
+
+  readonly content = computed(() => this.mine() ?? this.draft()?.content ?? null);
+  readonly revision = computed(() => this.draft()?.revision ?? null);
+  readonly savedAt = computed(() => this.draft()?.savedAt ?? null);
+  readonly savedBy = computed(() => this.draft()?.savedBy ?? null);
+  /** Everything that still stands in the way of confirming, as far as the columns alone can tell. */
+  readonly problems = computed(() => this.draft()?.problems ?? []);
+  readonly saveState = this.state.asReadonly();
+  readonly error = this.failure.asReadonly();
+  readonly unsaved = computed(() => this.state() !== 'saved');
+  /** What the draft gives on the rows; null until counted, or while it has changed since. */
+  readonly check = this.result.asReadonly();
+  readonly checking = this.isChecking.asReadonly();
+
+  constructor() {
+    inject(DestroyRef).onDestroy(() => void this.flush());
+  }
+
+  async open(modelId: string, sampleId: string): Promise<void> {
+    if (this.place?.sampleId === sampleId && this.draft()) return;
+    this.place = { modelId, sampleId };
+    await this.reload();
+  }
+
+  /** Takes what the server has now; own changes that were not saved are given up. */
+  async reload(): Promise<void> {
+    if (!this.place) return;
+    try {
+      const { value, etag } = await this.samples.draft(this.place.modelId, this.place.sampleId);
+      this.etag = etag;
+      this.draft.set(value);
+      this.mine.set(null);
+      this.result.set(null);
+      this.state.set('saved');
+      this.failure.set(null);
+    } catch (error) {
+      this.failure.set(asProblem(error));
+    }
+  }
+
+  /** Changes the draft and has it saved in a moment. */
+  change(edit: (content: DraftContent) => DraftContent): void {
+    const content = this.content();
+    if (!content) return;
+    const next = edit(content);
+    if (next === content) return;
+    this.mine.set(next);
+    this.result.set(null);
+    if (this.state() !== 'stale') this.state.set('unsaved');
+    if (this.timer) clearTimeout(this.timer);
+    this.timer = setTimeout(() => void this.flush(), saveAfterMs);
+  }
+
+  /** Saves now what has not been saved; resolves when it is, or when saving was refused (see `saveState`). */
+  async flush(): Promise<void> {
+    if (this.timer) clearTimeout(this.timer);
+    this.timer = null;
+    await this.saving;
+    if (this.state() !== 'unsaved' && this.state() !== 'failed') return;
+    this.saving = this.save().finally(() => (this.saving = null));
+    await this.saving;
+  }
+
+  /** After a stale save: own changes are saved over what someone else saved, which was shown before. */
+  async keepMine(): Promise<void> {
+    const { place } = this;
+    if (!place) return;
+    const { etag, value } = await this.samples.draft(place.modelId, place.sampleId);
+    this.etag = etag;
+    this.draft.set(value);
+    this.state.set('unsaved');
+    await this.flush();
+  }
+
+  /** Counts what the saved draft gives. */
+  async count(): Promise<void> {
+    await this.flush();
+    const { place } = this;
+    if (!place || this.state() !== 'saved' || this.isChecking()) return;
+    this.isChecking.set(true);
+    const content = this.content();
+    try {
+      const found = await this.samples.check(place.modelId, place.sampleId);
+      if (this.content() === content) this.result.set(found);
+      this.failure.set(null);
+    } catch (error) {
+      this.failure.set(asProblem(error));
+    } finally {
+      this.isChecking.set(false);
+    }
+  }
+
+  private async save(): Promise<void> {
+    const { place } = this;
+    const content = this.mine();
+    if (!place || !content) return;
+    this.state.set('saving');
+    try {
+      const { value, etag } = await this.samples.saveDraft(place.modelId, place.sampleId, content, this.etag);
+      this.etag = etag;
+      this.draft.set(value);
+      this.failure.set(null);
+      // What was typed while this was on its way is still to be saved.
+      if (this.mine() === content) {
+        this.mine.set(null);
+        this.state.set('saved');
+      } else this.state.set('unsaved');
+    } catch (error) {
+      if (isStale(error)) this.state.set('stale');
+      else {
+        this.state.set('failed');
+        this.failure.set(asProblem(error));
+      }
+    }
+    if (this.state() === 'unsaved') this.timer = setTimeout(() => void this.flush(), saveAfterMs);
+  }
+}

@@ -1,0 +1,94 @@
+import { HttpClient, HttpResourceRef, httpResource } from '@angular/common/http';
+import { Injectable, inject } from '@angular/core';
+import type { ColumnList, ColumnProfile, ColumnRole } from '@tallystone/contracts/samples/columns';
+import type {
+  Definition,
+  DefinitionCounts,
+  DefinitionList,
+  DefinitionSummary,
+  Draft,
+  DraftCheck,
+  DraftContent,
+} from '@tallystone/contracts/samples/definition';
+import type { Preview, PreviewRequest, ReadingChoices } from '@tallystone/contracts/samples/reading';
+import type { Sample, SampleList, SampleSummary, UploadSummary } from '@tallystone/contracts/samples/schema';
+import type { Run } from '@tallystone/contracts/runs/schema';
+import { firstValueFrom } from 'rxjs';
+import { Tagged, idempotent, readTagged, saveTagged } from '../../../core/http/etag';
+
+export type {
+  ColumnList,
+  ColumnProfile,
+  ColumnRole,
+  Definition,
+  DefinitionCounts,
+  DefinitionSummary,
+  Draft,
+  DraftCheck,
+  DraftContent,
+  Preview,
+  ReadingChoices,
+  Run,
+  Sample,
+  SampleList,
+  SampleSummary,
+  UploadSummary,
+};
+
+const of = (modelId: string, sampleId: string): string => `/api/models/${modelId}/samples/${sampleId}`;
+
+export function sampleList(modelId: () => string): HttpResourceRef<SampleList | undefined> {
+  return httpResource<SampleList>(() => `/api/models/${modelId()}/samples`);
+}
+
+export function oneSample(modelId: () => string, sampleId: () => string): HttpResourceRef<Sample | undefined> {
+  return httpResource<Sample>(() => of(modelId(), sampleId()));
+}
+
+export function columnsOf(modelId: () => string, sampleId: () => string): HttpResourceRef<ColumnList | undefined> {
+  return httpResource<ColumnList>(() => `${of(modelId(), sampleId())}/columns`);
+}
+
+export function definitionsOf(modelId: () => string, sampleId: () => string): HttpResourceRef<DefinitionList | undefined> {
+  return httpResource<DefinitionList>(() => `${of(modelId(), sampleId())}/definitions`);
+}
+
+/** Changes samples. Every method rejects with a Problem. */
+@Injectable({ providedIn: 'root' })
+export class Samples {
+  private readonly http = inject(HttpClient);
+
+  list(modelId: string): Promise<SampleList> {
+    return firstValueFrom(this.http.get<SampleList>(`/api/models/${modelId}/samples`));
+  }
+
+  preview(modelId: string, sampleId: string, choices: PreviewRequest): Promise<Preview> {
+    return firstValueFrom(this.http.post<Preview>(`${of(modelId, sampleId)}/preview`, choices));
+  }
+
+  read(modelId: string, sampleId: string, choices: ReadingChoices, key: string): Promise<Run> {
+    return firstValueFrom(this.http.post<Run>(`${of(modelId, sampleId)}/readings`, choices, { headers: idempotent(key) }));
+  }
+
+  discard(modelId: string, sampleId: string): Promise<unknown> {
+    return firstValueFrom(this.http.delete(of(modelId, sampleId)));
+  }
+
+  draft(modelId: string, sampleId: string): Promise<Tagged<Draft>> {
+    return firstValueFrom(readTagged<Draft>(this.http, `${of(modelId, sampleId)}/draft`));
+  }
+
+  saveDraft(modelId: string, sampleId: string, content: DraftContent, etag: string): Promise<Tagged<Draft>> {
+    return firstValueFrom(saveTagged<Draft>(this.http, 'PUT', `${of(modelId, sampleId)}/draft`, content, etag));
+  }
+
+  check(modelId: string, sampleId: string): Promise<DraftCheck> {
+    return firstValueFrom(this.http.post<DraftCheck>(`${of(modelId, sampleId)}/draft/check`, null));
+  }
+
+  confirm(modelId: string, sampleId: string, revision: number, key: string): Promise<Run> {
+    return firstValueFrom(
+      this.http.post<Run>(`${of(modelId, sampleId)}/definitions`, { revision }, { headers: idempotent(key) }),
+    );
+  }
+}

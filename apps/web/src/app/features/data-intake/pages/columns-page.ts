@@ -1,0 +1,204 @@
+import { ChangeDetectionStrategy, Component, computed, effect, inject, input, untracked } from '@angular/core';
+import { MatButtonModule } from '@angular/material/button';
+import { Router, RouterLink } from '@angular/router';
+import { warnBeforeUnload } from '../../../core/unsaved-changes';
+import { Column } from '../../../ui/column';
+import { CellTemplate, DenseTable, TableSort } from '../../../ui/dense-table';
+import { PageHeader } from '../../../ui/page-header';
+import { ProblemList } from '../../../ui/problem-list';
+import { DraftStore } from '../data/draft-store';
+import { ColumnProfile, columnsOf, oneSample } from '../data/samples';
+import { ColumnEditor } from '../ui/column-editor';
+import { mostFrequentOf, rangeOf } from '../ui/findings';
+import { SampleSteps } from '../ui/sample-steps';
+import { SaveStateNote } from '../ui/save-state';
+import type { DefinedColumn } from '@tallystone/contracts/samples/definition';
+
+interface Row {
+  readonly profile: ColumnProfile;
+  readonly defined: DefinedColumn | null;
+}
+
+/** The quality of each column and what it is taken for. The chosen column stands in the address. */
+@Component({
+  selector: 'ts-columns-page',
+  changeDetection: ChangeDetectionStrategy.OnPush,
+  imports: [
+    RouterLink,
+    MatButtonModule,
+    CellTemplate,
+    ColumnEditor,
+    DenseTable,
+    PageHeader,
+    ProblemList,
+    SampleSteps,
+    SaveStateNote,
+  ],
+  template: `
+    <div class="ts-stack">
+      <ts-sample-steps
+        [modelId]="modelId()"
+        [sampleId]="sampleId()"
+        [fileName]="sample.value()?.fileName ?? ''"
+        [open]="['reading', 'columns', 'definition']"
+      />
+      <ts-page-header title="Columns" [finding]="columns.value()?.finding ?? null">
+        <a matButton="filled" [routerLink]="['/models', modelId(), 'sample', sampleId(), 'definition']">Outcome and partition</a>
+      </ts-page-header>
+      <ts-problems [error]="columns.error()" />
+      <ts-problems [error]="draft.error()" />
+      <ts-save-state
+        [state]="draft.saveState()"
+        [savedAt]="draft.savedAt()"
+        [savedBy]="draft.savedBy()"
+        (theirs)="draft.reload()"
+        (mine)="draft.keepMine()"
+      />
+      <div class="ts-split">
+        <ts-table
+          caption="Columns of the sample"
+          [columns]="table"
+          [rows]="rows()"
+          [identify]="byColumn"
+          [quiet]="isQuiet"
+          [selected]="isSelected"
+          [activatable]="true"
+          [sort]="order()"
+          (sortChange)="reorder($event)"
+          (activate)="choose($event.profile.column)"
+          empty="The file has not been read yet."
+        >
+          <ng-template tsCell="column" [tsCellRows]="rows()" let-row>
+            <button
+              class="name"
+              type="button"
+              [attr.aria-pressed]="row.profile.column === chosen()?.profile.column"
+              (click)="choose(row.profile.column)"
+            >
+              {{ row.profile.column }}
+            </button>
+          </ng-template>
+        </ts-table>
+        @if (chosen(); as row) {
+          <ts-column-editor [profile]="row.profile" [column]="row.defined" [editable]="editable()" (changed)="change($event)" />
+        }
+      </div>
+    </div>
+  `,
+  styles: `
+    .name {
+      font: inherit;
+      color: var(--ts-primary);
+      background: none;
+      border: 0;
+      padding: 2px 0;
+      min-height: 24px;
+      cursor: pointer;
+      text-align: left;
+      text-decoration: underline;
+      text-decoration-thickness: 1px;
+      text-underline-offset: 3px;
+    }
+    .name[aria-pressed='true'] {
+      font-weight: 600;
+    }
+  `,
+})
+export class ColumnsPage {
+  private readonly router = inject(Router);
+  protected readonly draft = inject(DraftStore);
+
+  readonly modelId = input.required<string>();
+  readonly sampleId = input.required<string>();
+  readonly column = input<string>();
+  readonly sort = input<string>();
+
+  protected readonly sample = oneSample(
+    () => this.modelId(),
+    () => this.sampleId(),
+  );
+  protected readonly columns = columnsOf(
+    () => this.modelId(),
+    () => this.sampleId(),
+  );
+  readonly unsaved = this.draft.unsaved;
+  protected readonly editable = computed(() => this.sample.hasValue() && this.sample.value().abilities.includes('define'));
+  protected readonly rows = computed<readonly Row[]>(() => {
+    const profiles = this.columns.hasValue() ? this.columns.value().columns : [];
+    const defined = new Map((this.draft.content()?.columns ?? []).map((entry) => [entry.column, entry]));
+    return profiles.map((profile) => ({ profile, defined: defined.get(profile.column) ?? null }));
+  });
+  protected readonly chosen = computed(
+    () => this.rows().find(({ profile }) => profile.column === this.column()) ?? this.rows()[0] ?? null,
+  );
+  protected readonly order = computed<TableSort | null>(() => {
+    const [key, direction] = (this.sort() ?? '').split('.');
+    return this.table.some((entry) => entry.key === key) ? { key, descending: direction === 'down' } : null;
+  });
+
+  protected readonly table: readonly Column<Row>[] = [
+    { key: 'column', label: 'Column', value: (row) => row.profile.column, sortable: true },
+    {
+      key: 'role',
+      label: 'Role',
+      value: (row) => (row.defined ? row.defined.role + (row.defined.protected ? ', protected' : '') : null),
+      sortable: true,
+    },
+    { key: 'type', label: 'Type', value: (row) => row.defined?.kind ?? row.profile.kind, sortable: true },
+    { key: 'distinct', label: 'Distinct', kind: 'count', value: (row) => row.profile.distinct, sortable: true },
+    {
+      key: 'missing',
+      label: 'Missing',
+      unit: '%',
+      kind: 'share',
+      value: (row) => row.profile.missing / Math.max(1, row.profile.rows),
+      sortable: true,
+    },
+    { key: 'special', label: 'Special', kind: 'count', value: (row) => specialRows(row), sortable: true },
+    { key: 'range', label: 'Range', value: (row) => rangeOf(row.profile) },
+    { key: 'frequent', label: 'Most frequent', value: (row) => mostFrequentOf(row.profile), width: 24 },
+    {
+      key: 'flags',
+      label: 'Flags',
+      value: (row) => row.profile.flags.map(({ code }) => code.replaceAll('-', ' ')).join(', '),
+      width: 30,
+      sortable: true,
+    },
+  ];
+
+  constructor() {
+    warnBeforeUnload(() => this.draft.unsaved());
+    effect(() => {
+      const [modelId, sampleId] = [this.modelId(), this.sampleId()];
+      untracked(() => void this.draft.open(modelId, sampleId));
+    });
+  }
+
+  protected readonly byColumn = (row: Row): string => row.profile.column;
+  protected readonly isQuiet = (row: Row): boolean => row.defined?.role === 'not used';
+  protected readonly isSelected = (row: Row): boolean => row === this.chosen();
+
+  protected choose(column: string): void {
+    void this.router.navigate([], { queryParams: { column }, queryParamsHandling: 'merge', replaceUrl: true });
+  }
+
+  protected reorder(sort: TableSort | null): void {
+    const value = sort ? `${sort.key}.${sort.descending ? 'down' : 'up'}` : null;
+    void this.router.navigate([], { queryParams: { sort: value }, queryParamsHandling: 'merge', replaceUrl: true });
+  }
+
+  protected change(entry: DefinedColumn): void {
+    this.draft.change((content) => ({
+      ...content,
+      columns: content.columns.map((column) => (column.column === entry.column ? entry : column)),
+    }));
+  }
+}
+
+/** Rows that hold one of the special codes named so far, as far as the profile lists them. */
+function specialRows({ profile, defined }: Row): number | null {
+  const codes = new Set((defined?.special ?? []).flatMap(({ values }) => values.map(String)));
+  if (codes.size === 0) return null;
+  const listed = [...profile.mostFrequent, ...profile.specialSuspects].filter(({ value }) => codes.has(value));
+  return [...new Map(listed.map(({ value, count }) => [value, count])).values()].reduce((sum, count) => sum + count, 0);
+}

@@ -1,0 +1,163 @@
+import { ChangeDetectionStrategy, Component, computed, effect, inject, input, signal, untracked } from '@angular/core';
+import { takeUntilDestroyed } from '@angular/core/rxjs-interop';
+import { MatButtonModule } from '@angular/material/button';
+import { RouterLink } from '@angular/router';
+import type { ColumnRole } from '@tallystone/contracts/samples/columns';
+import type { DraftContent } from '@tallystone/contracts/samples/definition';
+import { filter } from 'rxjs';
+import { CurrentModel } from '../../../core/current-model';
+import { Runs, hasEnded } from '../../../core/events/runs';
+import { newIdempotencyKey } from '../../../core/http/etag';
+import { Problem } from '../../../core/http/problem';
+import { Task } from '../../../core/task';
+import { warnBeforeUnload } from '../../../core/unsaved-changes';
+import { DecisionNotice } from '../../../ui/decision-notice';
+import { moment, plural } from '../../../ui/numbers';
+import { PageHeader } from '../../../ui/page-header';
+import { ProblemList } from '../../../ui/problem-list';
+import { RunProgress } from '../../../ui/run-progress';
+import { DraftStore } from '../data/draft-store';
+import { ColumnProfile, Samples, columnsOf, definitionsOf, oneSample } from '../data/samples';
+import { ExclusionList } from '../ui/exclusion-list';
+import { countsFinding } from '../ui/findings';
+import { OutcomeEditor } from '../ui/outcome-editor';
+import { PartitionEditor } from '../ui/partition-editor';
+import { PartitionTable } from '../ui/partition-table';
+import { SampleSteps } from '../ui/sample-steps';
+import { SaveStateNote } from '../ui/save-state';
+import { WaterfallFigure } from '../ui/waterfall-figure';
+
+/** What the sample means: outcome, exclusions, partition, and the waterfall that they give; then confirmed for good. */
+@Component({
+  selector: 'ts-definition-page',
+  changeDetection: ChangeDetectionStrategy.OnPush,
+  imports: [
+    RouterLink,
+    MatButtonModule,
+    DecisionNotice,
+    ExclusionList,
+    OutcomeEditor,
+    PageHeader,
+    PartitionEditor,
+    PartitionTable,
+    ProblemList,
+    RunProgress,
+    SampleSteps,
+    SaveStateNote,
+    WaterfallFigure,
+  ],
+  templateUrl: './definition-page.html',
+  styles: `
+    section {
+      display: grid;
+      gap: 14px;
+      grid-template-columns: minmax(0, 1fr);
+    }
+  `,
+})
+export class DefinitionPage {
+  private readonly samples = inject(Samples);
+  private readonly runs = inject(Runs);
+  private readonly current = inject(CurrentModel);
+  protected readonly draft = inject(DraftStore);
+
+  readonly modelId = input.required<string>();
+  readonly sampleId = input.required<string>();
+
+  private readonly model = () => this.modelId();
+  private readonly id = () => this.sampleId();
+  protected readonly sample = oneSample(this.model, this.id);
+  protected readonly columns = columnsOf(this.model, this.id);
+  protected readonly definitions = definitionsOf(this.model, this.id);
+  protected readonly confirming = new Task();
+  protected readonly changing = signal(false);
+  protected readonly moment = moment;
+  private readonly runId = signal<string | null>(null);
+  protected readonly run = this.runs.run(() => this.runId() ?? (this.sample.hasValue() ? this.sample.value().runId : null));
+  readonly unsaved = this.draft.unsaved;
+
+  protected readonly editable = computed(() => this.sample.hasValue() && this.sample.value().abilities.includes('define'));
+  protected readonly profiles = computed(() => (this.columns.hasValue() ? this.columns.value().columns : []));
+  protected readonly latest = computed(() =>
+    this.definitions.hasValue() ? (this.definitions.value().definitions[0] ?? null) : null,
+  );
+  protected readonly weight = computed(() => this.draft.content()?.columns.find(({ role }) => role === 'weight')?.column ?? null);
+  protected readonly problems = computed(() => {
+    const counted = this.draft.check()?.problems ?? [];
+    const list = this.draft.problems().length > 0 ? this.draft.problems() : counted;
+    return list.length === 0
+      ? null
+      : new Problem(422, 'draft', `${plural(list.length, 'thing')} to settle before this can be confirmed`, '', list);
+  });
+  protected readonly ready = computed(() => {
+    const run = this.run();
+    const busy = this.confirming.busy() || (run !== null && !hasEnded(run));
+    return !busy && this.draft.saveState() === 'saved' && this.draft.check()?.counts != null;
+  });
+  protected readonly finding = computed(() => {
+    const counts = this.draft.check()?.counts ?? (this.changing() ? null : this.latest()?.counts);
+    if (counts) return countsFinding(counts);
+    const problems = this.draft.problems().length;
+    return problems > 0
+      ? `${plural(problems, 'thing')} to settle before this can be confirmed.`
+      : 'Say what is good and bad, who is left out, and how the sample is split.';
+  });
+
+  constructor() {
+    warnBeforeUnload(() => this.draft.unsaved());
+    effect(() => {
+      const [modelId, sampleId] = [this.modelId(), this.sampleId()];
+      untracked(() => void this.draft.open(modelId, sampleId));
+    });
+    // Counts by itself once everything that the columns can tell is settled.
+    effect(() => {
+      const wanted = this.editable() && (this.latest() === null || this.changing());
+      const settled = this.draft.saveState() === 'saved' && this.draft.content() !== null && this.draft.problems().length === 0;
+      if (wanted && settled && this.draft.check() === null) untracked(() => void this.draft.count());
+    });
+    this.runs.finished
+      .pipe(
+        filter(({ entity, entityId }) => entity === 'sample' && entityId === this.sampleId()),
+        takeUntilDestroyed(),
+      )
+      .subscribe((run) => {
+        this.definitions.reload();
+        this.sample.reload();
+        if (run.state === 'succeeded') this.changing.set(false);
+        void this.current.reload();
+      });
+  }
+
+  protected holder(role: ColumnRole): ColumnProfile | null {
+    const column = this.draft.content()?.columns.find((entry) => entry.role === role)?.column;
+    return this.profiles().find((profile) => profile.column === column) ?? null;
+  }
+
+  protected patch(change: Partial<DraftContent>): void {
+    this.draft.change((content) => ({ ...content, ...change }));
+  }
+
+  /** The outcome moves to another column; the one that had it is not used until someone gives it a role. */
+  protected setOutcomeColumn(column: string): void {
+    this.draft.change((content) => ({
+      ...content,
+      columns: content.columns.map((entry) => {
+        if (entry.column === column) return { ...entry, role: 'outcome' };
+        return entry.role === 'outcome' ? { ...entry, role: 'not used', reason: 'Another column is the outcome.' } : entry;
+      }),
+      outcome: { good: [], bad: [], indeterminate: [], excluded: [] },
+    }));
+  }
+
+  protected async confirm(): Promise<void> {
+    await this.draft.flush();
+    const revision = this.draft.revision();
+    if (revision === null) return;
+    const run = await this.confirming.run(() =>
+      this.samples.confirm(this.modelId(), this.sampleId(), revision, newIdempotencyKey()),
+    );
+    if (!run) return;
+    this.runs.follow(run);
+    this.runId.set(run.id);
+  }
+}

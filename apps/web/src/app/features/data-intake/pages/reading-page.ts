@@ -1,0 +1,198 @@
+import { ChangeDetectionStrategy, Component, computed, effect, inject, input, signal, untracked } from '@angular/core';
+import { takeUntilDestroyed } from '@angular/core/rxjs-interop';
+import { MatButtonModule } from '@angular/material/button';
+import { Router } from '@angular/router';
+import { filter } from 'rxjs';
+import { CurrentModel } from '../../../core/current-model';
+import { Runs } from '../../../core/events/runs';
+import { newIdempotencyKey } from '../../../core/http/etag';
+import { Problem } from '../../../core/http/problem';
+import { Task } from '../../../core/task';
+import { Ask } from '../../../ui/ask';
+import { PageHeader } from '../../../ui/page-header';
+import { ProblemList } from '../../../ui/problem-list';
+import { RunProgress } from '../../../ui/run-progress';
+import { Preview, ReadingChoices, Samples, oneSample } from '../data/samples';
+import { readingFinding } from '../ui/findings';
+import { PreviewTable } from '../ui/preview-table';
+import { ReadingForm } from '../ui/reading-form';
+import { SampleSteps } from '../ui/sample-steps';
+
+/** How the file is read: proposed with reasons, shown on its first rows with every doubt, confirmed by a person. */
+@Component({
+  selector: 'ts-reading-page',
+  changeDetection: ChangeDetectionStrategy.OnPush,
+  imports: [MatButtonModule, PageHeader, PreviewTable, ProblemList, ReadingForm, RunProgress, SampleSteps],
+  template: `
+    <div class="ts-stack">
+      <ts-sample-steps
+        [modelId]="modelId()"
+        [sampleId]="sampleId()"
+        [fileName]="sample.value()?.fileName ?? ''"
+        [open]="open()"
+      />
+      <ts-page-header title="Reading choices" [finding]="finding()">
+        @if (mayDiscard()) {
+          <button matButton type="button" (click)="discard()">Discard the file</button>
+        }
+      </ts-page-header>
+      <ts-problems [error]="sample.error()" />
+      <ts-problems [error]="looking.error()" next="Change the choices and look again." />
+      <ts-problems [error]="starting.error()" />
+      <ts-run-progress [run]="run()" title="Reading the file" />
+      <ts-problems
+        [error]="fileProblems()"
+        next="Mend the file and bring it in again, or change the reading choices below."
+        [limit]="60"
+      />
+
+      @if (preview(); as view) {
+        @if (mayRead()) {
+          <ts-reading-form [choices]="view.choices" [reasons]="view.reasons" [disabled]="busy()" (changed)="look($event)" />
+          <div class="ts-actions">
+            <button matButton="filled" type="button" [disabled]="busy() || view.problems.length > 0" (click)="read()">
+              {{ sample.value()?.state === 'ready' ? 'Read the file again' : 'Read the file' }}
+            </button>
+            @if (looking.busy()) {
+              <span class="ts-second" role="status">Looking at the file</span>
+            }
+          </div>
+        }
+        <ts-preview-table [preview]="view" />
+      } @else if (!mayRead() && sample.hasValue()) {
+        <p class="ts-second">
+          The file was read with the choices below; a confirmed definition rests on them, or reading is for the modellers of this
+          model.
+        </p>
+      } @else if (looking.busy()) {
+        <p class="ts-second" role="status">Looking at the file</p>
+      }
+      @if (!mayRead() && sample.value()?.reading; as reading) {
+        <dl class="ts-pairs">
+          <dt>Delimiter</dt>
+          <dd>{{ reading.delimiter === '	' ? 'tab' : reading.delimiter }}</dd>
+          <dt>Encoding</dt>
+          <dd>{{ reading.encoding }}</dd>
+          <dt>Decimal sign</dt>
+          <dd>{{ reading.decimal }}</dd>
+          <dt>Thousands sign</dt>
+          <dd>{{ reading.thousands ?? 'none' }}</dd>
+          <dt>Missing</dt>
+          <dd>{{ missingWords() }}</dd>
+        </dl>
+      }
+    </div>
+  `,
+})
+export class ReadingPage {
+  private readonly samples = inject(Samples);
+  private readonly runs = inject(Runs);
+  private readonly router = inject(Router);
+  private readonly current = inject(CurrentModel);
+  private readonly ask = inject(Ask);
+
+  readonly modelId = input.required<string>();
+  readonly sampleId = input.required<string>();
+
+  protected readonly sample = oneSample(
+    () => this.modelId(),
+    () => this.sampleId(),
+  );
+  protected readonly preview = signal<Preview | null>(null);
+  protected readonly looking = new Task();
+  protected readonly starting = new Task();
+  private readonly runId = signal<string | null>(null);
+  private readonly known = computed(() => this.runId() ?? (this.sample.hasValue() ? this.sample.value().runId : null));
+  protected readonly run = this.runs.run(() => this.known());
+  private chosen: Partial<ReadingChoices> = {};
+
+  private readonly abilities = computed(() => (this.sample.hasValue() ? this.sample.value().abilities : []));
+  protected readonly mayRead = computed(() => this.abilities().includes('read-file'));
+  protected readonly mayDiscard = computed(() => this.abilities().includes('discard'));
+  protected readonly underWay = computed(() => {
+    const run = this.run();
+    return run !== null && !['succeeded', 'failed', 'cancelled'].includes(run.state);
+  });
+  protected readonly busy = computed(() => this.underWay() || this.looking.busy() || this.starting.busy());
+  protected readonly open = computed(() =>
+    this.sample.hasValue() && this.sample.value().rows !== null ? ['reading', 'columns', 'definition'] : ['reading'],
+  );
+  protected readonly finding = computed(() => {
+    const preview = this.preview();
+    return preview ? readingFinding(preview) : null;
+  });
+  /** What the last reading, and then what the preview, found wrong with the file. */
+  protected readonly fileProblems = computed(() => {
+    const shown = this.preview()?.problems ?? [];
+    const last = this.sample.hasValue() && !this.underWay() ? this.sample.value().problems : [];
+    const problems = shown.length > 0 ? shown : last;
+    return problems.length === 0 ? null : new Problem(422, 'file', 'The file cannot be read like this', '', problems);
+  });
+  protected readonly missingWords = computed(() => {
+    const missing = this.sample.hasValue() ? (this.sample.value().reading?.missing ?? []) : [];
+    return missing.map((token) => (token === '' ? 'empty' : token)).join(', ');
+  });
+
+  constructor() {
+    // Looks once the sample is known: from what it was read with, else from what the file itself suggests.
+    effect(() => {
+      if (!this.sample.hasValue() || !this.mayRead()) return;
+      const reading = this.sample.value().reading;
+      untracked(() => {
+        if (this.preview() === null && !this.looking.busy()) void this.look(reading ?? {});
+      });
+    });
+    this.runs.finished
+      .pipe(
+        filter(({ entity, entityId }) => entity === 'sample' && entityId === this.sampleId()),
+        takeUntilDestroyed(),
+      )
+      .subscribe((run) => {
+        this.sample.reload();
+        void this.current.reload();
+        if (run.state === 'succeeded' && run.kind === 'sample.read') {
+          void this.router.navigate(['/models', this.modelId(), 'sample', this.sampleId(), 'columns']);
+        }
+      });
+  }
+
+  protected async look(choices: Partial<ReadingChoices>): Promise<void> {
+    this.chosen = { ...this.chosen, ...choices };
+    const preview = await this.looking.run(() => this.samples.preview(this.modelId(), this.sampleId(), this.chosen));
+    if (preview) this.preview.set(preview);
+  }
+
+  protected async read(): Promise<void> {
+    const preview = this.preview();
+    if (!preview) return;
+    if (this.sample.hasValue() && this.sample.value().state === 'ready') {
+      const answer = await this.ask.for({
+        title: 'Read the file again?',
+        text: 'Columns, their quality and the draft of the definition are made anew under these choices. Roles and mappings set so far are suggested afresh.',
+        accept: 'Read again',
+      });
+      if (!answer) return;
+    }
+    const run = await this.starting.run(() =>
+      this.samples.read(this.modelId(), this.sampleId(), preview.choices, newIdempotencyKey()),
+    );
+    if (!run) return;
+    this.runs.follow(run);
+    this.runId.set(run.id);
+    this.sample.reload();
+  }
+
+  protected async discard(): Promise<void> {
+    const answer = await this.ask.for({
+      title: 'Discard this file?',
+      text: 'The stored file, its columns and its draft are removed. That it was here stays in the record.',
+      accept: 'Discard',
+      grave: true,
+    });
+    if (!answer) return;
+    const done = await this.starting.run(() => this.samples.discard(this.modelId(), this.sampleId()).then(() => true));
+    if (!done) return;
+    await this.current.reload();
+    await this.router.navigate(['/models', this.modelId(), 'sample']);
+  }
+}

@@ -1,0 +1,246 @@
+import { ChangeDetectionStrategy, Component, computed, input, output } from '@angular/core';
+import { MatButtonModule } from '@angular/material/button';
+import { MatCheckboxModule } from '@angular/material/checkbox';
+import { MatFormFieldModule } from '@angular/material/form-field';
+import { MatInputModule } from '@angular/material/input';
+import { MatSelectModule } from '@angular/material/select';
+import type { ColumnProfile, ColumnRole } from '@tallystone/contracts/samples/columns';
+import type { DefinedColumn, SpecialCode } from '@tallystone/contracts/samples/definition';
+import { count, significant } from '../../../ui/numbers';
+import { ColumnFigure } from './column-figure';
+
+const roles: readonly ColumnRole[] = [
+  'characteristic',
+  'outcome',
+  'decision',
+  'incumbent score',
+  'identifier',
+  'group key',
+  'weight',
+  'partition',
+  'application date',
+  'segment',
+  'not used',
+];
+
+/** One column: what its values say, what is suggested and why, and what it is taken for. */
+@Component({
+  selector: 'ts-column-editor',
+  changeDetection: ChangeDetectionStrategy.OnPush,
+  imports: [MatButtonModule, MatCheckboxModule, MatFormFieldModule, MatInputModule, MatSelectModule, ColumnFigure],
+  template: `
+    <ts-column-figure [profile]="profile()" />
+    @if (profile().flags.length > 0) {
+      <ul class="flags" aria-label="Flags">
+        @for (flag of profile().flags; track flag.code) {
+          <li>
+            <b>{{ names[flag.weight] }}</b> {{ flag.finding }}
+          </li>
+        }
+      </ul>
+    }
+    @if (profile().numeric; as numeric) {
+      <dl class="ts-pairs">
+        <dt>Mean, deviation</dt>
+        <dd>{{ write(numeric.mean) }}, {{ write(numeric.standardDeviation) }}</dd>
+        <dt>5 %, median, 95 %</dt>
+        <dd>{{ quantiles() }}</dd>
+      </dl>
+    }
+    <p class="ts-caption">Suggested: {{ profile().suggestedRole }}. {{ profile().suggestion }}</p>
+    @if (column(); as entry) {
+      <div class="edit">
+        <mat-form-field>
+          <mat-label>Role</mat-label>
+          <mat-select [value]="entry.role" [disabled]="!editable()" (selectionChange)="set({ role: $event.value })">
+            @for (role of roles; track role) {
+              <mat-option [value]="role">{{ role }}</mat-option>
+            }
+          </mat-select>
+        </mat-form-field>
+        <mat-form-field>
+          <mat-label>Values are</mat-label>
+          <mat-select [value]="entry.kind" [disabled]="!editable() || profile().hashed" (selectionChange)="setKind($event.value)">
+            <mat-option value="numeric" [disabled]="profile().kind !== 'numeric'">numeric</mat-option>
+            <mat-option value="categorical">categorical</mat-option>
+            <mat-option value="date" [disabled]="profile().kind !== 'date'">date</mat-option>
+          </mat-select>
+        </mat-form-field>
+        <mat-checkbox [checked]="entry.protected" [disabled]="!editable()" (change)="set({ protected: $event.checked })">
+          Protected attribute
+        </mat-checkbox>
+        @if (entry.protected) {
+          <p class="ts-caption">
+            Barred from any fit unless compliance permits it with a citation. Which attributes are protected is for the law that
+            applies to the lender and its qualified staff.
+          </p>
+          @if (entry.role === 'characteristic') {
+            <mat-form-field>
+              <mat-label>Citation that permits it</mat-label>
+              <input
+                matInput
+                [value]="entry.citation ?? ''"
+                [disabled]="!editable()"
+                (change)="set({ citation: text($event) || null })"
+              />
+            </mat-form-field>
+          }
+        }
+        <mat-form-field>
+          <mat-label>{{ entry.role === 'not used' ? 'Why it is not used' : 'Note, such as why a flag is accepted' }}</mat-label>
+          <textarea
+            matInput
+            rows="2"
+            [value]="entry.reason ?? ''"
+            [disabled]="!editable()"
+            (change)="set({ reason: text($event) || null })"
+          ></textarea>
+        </mat-form-field>
+        @if (entry.kind !== 'date' && !profile().hashed) {
+          <fieldset>
+            <legend>Special codes</legend>
+            @for (special of entry.special; track $index; let place = $index) {
+              <div class="code">
+                <mat-form-field>
+                  <mat-label>Code</mat-label>
+                  <input
+                    matInput
+                    [value]="special.values.join(', ')"
+                    [disabled]="!editable()"
+                    (change)="setCode(place, { values: values($event) })"
+                  />
+                </mat-form-field>
+                <mat-form-field>
+                  <mat-label>Meaning</mat-label>
+                  <input
+                    matInput
+                    [value]="special.label"
+                    [disabled]="!editable()"
+                    (change)="setCode(place, { label: text($event) })"
+                  />
+                </mat-form-field>
+                @if (editable()) {
+                  <button
+                    matButton
+                    type="button"
+                    [attr.aria-label]="'Remove the code ' + special.values.join(', ')"
+                    (click)="removeCode(place)"
+                  >
+                    Remove
+                  </button>
+                }
+              </div>
+            }
+            @for (suspect of suspects(); track suspect.value) {
+              <p class="ts-caption">
+                {{ suspect.value }}: {{ suspect.reason }}
+                @if (editable()) {
+                  <button matButton type="button" (click)="addCode(suspect.value)">Treat as special code</button>
+                }
+              </p>
+            }
+            @if (editable()) {
+              <button matButton type="button" (click)="addCode('')">Add a special code</button>
+            }
+          </fieldset>
+        }
+      </div>
+    }
+  `,
+  styles: `
+    :host,
+    .edit,
+    fieldset {
+      display: grid;
+      grid-template-columns: minmax(0, 1fr);
+      gap: 14px;
+    }
+    .flags {
+      list-style: none;
+      display: grid;
+      gap: 6px;
+    }
+    .flags b {
+      margin-right: 4px;
+    }
+    .code {
+      display: grid;
+      grid-template-columns: minmax(0, 110px) minmax(0, 1fr) auto;
+      gap: 8px;
+      align-items: center;
+    }
+    @media (max-width: 480px) {
+      .code {
+        grid-template-columns: minmax(0, 1fr);
+      }
+    }
+    fieldset button {
+      justify-self: start;
+    }
+  `,
+})
+export class ColumnEditor {
+  readonly profile = input.required<ColumnProfile>();
+  readonly column = input<DefinedColumn | null>(null);
+  readonly editable = input(false);
+  readonly changed = output<DefinedColumn>();
+
+  protected readonly roles = roles;
+  protected readonly names = { stop: 'Not used:', look: 'Look:', note: 'Note:' } as const;
+  protected readonly write = (value: number): string => significant(value, 4);
+  protected readonly quantiles = computed(() => {
+    const list = this.profile().numeric?.quantiles ?? [];
+    return [0.05, 0.5, 0.95].map((at) => significant(list.find((quantile) => quantile.share === at)?.value, 4)).join(', ');
+  });
+  protected readonly suspects = computed(() => {
+    const known = new Set((this.column()?.special ?? []).flatMap(({ values }) => values.map(String)));
+    return this.profile()
+      .specialSuspects.filter(({ value }) => !known.has(value))
+      .map((suspect) => ({ ...suspect, count: count(suspect.count) }));
+  });
+
+  protected set(change: Partial<DefinedColumn>): void {
+    const column = this.column();
+    if (column) this.changed.emit({ ...column, ...change });
+  }
+
+  /** Codes follow the kind: numbers for numbers, texts for categories. */
+  protected setKind(kind: DefinedColumn['kind']): void {
+    const column = this.column();
+    if (!column) return;
+    const special = column.special.map((code) => ({
+      ...code,
+      values: code.values.map((value) => (kind === 'numeric' ? Number(value) : String(value))),
+    }));
+    this.set({ kind, special });
+  }
+
+  protected setCode(place: number, change: Partial<SpecialCode>): void {
+    const special = (this.column()?.special ?? []).map((code, index) => (index === place ? { ...code, ...change } : code));
+    if (special[place].label.trim() !== '' && special[place].values.length > 0) this.set({ special });
+  }
+
+  protected addCode(value: string): void {
+    const column = this.column();
+    if (!column) return;
+    const values =
+      value === '' ? [column.kind === 'numeric' ? -999 : 'UNKNOWN'] : [column.kind === 'numeric' ? Number(value) : value];
+    this.set({ special: [...column.special, { label: 'meaning to be stated', values }] });
+  }
+
+  protected removeCode(place: number): void {
+    this.set({ special: (this.column()?.special ?? []).filter((_, index) => index !== place) });
+  }
+
+  protected text(event: Event): string {
+    return (event.target as HTMLInputElement).value.trim();
+  }
+
+  protected values(event: Event): (number | string)[] {
+    const texts = this.text(event)
+      .split(',')
+      .map((value) => value.trim())
+      .filter((value) => value !== '');
+    return this.column()?.kind === 'numeric' ? texts.map(Number).filter((value) => Number.isFinite(value)) : texts;
+  }
+}

@@ -1,0 +1,72 @@
+import type { ColumnList, ColumnProfile } from '@tallystone/contracts/samples/columns';
+import type { DefinitionCounts, WaterfallStep } from '@tallystone/contracts/samples/definition';
+import type { Preview } from '@tallystone/contracts/samples/reading';
+import type { SampleList } from '@tallystone/contracts/samples/schema';
+import { count, plural, share, significant } from '../../../ui/numbers';
+
+/** One sentence for the top of each page, by rules; where none fires, the counts. */
+export function samplesFinding({ samples, uploads }: SampleList): string {
+  if (samples.length === 0) {
+    return uploads.length > 0
+      ? 'A file has arrived in part: choose it again and it goes on from there.'
+      : 'A CSV of past applicants with their outcome starts the work.';
+  }
+  const defined = samples.filter(({ definitions }) => definitions > 0).length;
+  const waiting = samples.filter(({ state }) => state === 'received').length;
+  if (waiting > 0)
+    return `${plural(waiting, 'file')} of ${count(samples.length)} wait${waiting === 1 ? 's' : ''} for reading choices.`;
+  if (defined === 0) return `${plural(samples.length, 'sample')}, none defined yet: say what is good and bad, and confirm.`;
+  return `${plural(samples.length, 'sample')}, ${count(defined)} of them with a confirmed definition.`;
+}
+
+export function readingFinding(preview: Preview): string {
+  const part = preview.looked.whole
+    ? `All ${count(preview.looked.records)} rows`
+    : `The first ${count(preview.looked.records)} rows`;
+  if (preview.problems.length > 0) return `${plural(preview.problems.length, 'problem')} to settle before the file can be read.`;
+  const columns = plural(preview.header.length, 'column');
+  if (preview.warnings.length > 0)
+    return `${part} have ${columns} each; ${plural(preview.warnings.length, 'column deserves', 'columns deserve')} a look.`;
+  return `${part} have ${columns} each, and nothing speaks against these choices.`;
+}
+
+/** "18 to 77, median 41": what a quality table has room for. */
+export function rangeOf(profile: ColumnProfile): string {
+  const { numeric, date, text } = profile;
+  if (numeric) {
+    const write = (value: number): string => (numeric.integers ? count(value) : significant(value, 4));
+    return `${write(numeric.smallest)} to ${write(numeric.largest)}`;
+  }
+  if (date) return `${date.first} to ${date.last}`;
+  if (text)
+    return text.shortest === text.longest
+      ? plural(text.longest, 'character')
+      : `${count(text.shortest)} to ${plural(text.longest, 'character')}`;
+  return '';
+}
+
+export function mostFrequentOf(profile: ColumnProfile): string {
+  const [first] = profile.mostFrequent;
+  if (profile.hashed) return 'kept as hashes';
+  return first ? `${first.value} (${share(first.count / Math.max(1, profile.rows - profile.missing), 0)})` : '';
+}
+
+/** Columns that nobody has looked at and that deserve it, for the notice on top. */
+export const flagged = (list: ColumnList): number =>
+  list.columns.filter(({ flags }) => flags.some(({ weight }) => weight !== 'note')).length;
+
+export function badRateOut(step: WaterfallStep): number | null {
+  if (step.outGoods === null || step.outBads === null || step.outGoods + step.outBads === 0) return null;
+  return step.outBads / (step.outGoods + step.outBads);
+}
+
+export function countsFinding(counts: DefinitionCounts): string {
+  const source = counts.waterfall[0]?.left ?? 0;
+  const { development, holdOut, outOfTime } = counts.partitions;
+  const rate = development.badRate === null ? '' : `, ${count(development.bads)} of them bad (${share(development.badRate)})`;
+  const rest = [
+    holdOut.rows > 0 ? `${count(holdOut.rows)} hold-out` : '',
+    outOfTime.rows > 0 ? `${count(outOfTime.rows)} out-of-time` : '',
+  ].filter(Boolean);
+  return `${count(development.rows)} of ${count(source)} rows are development${rate}${rest.length > 0 ? `; ${rest.join(' and ')}` : ''}.`;
+}

@@ -1,0 +1,71 @@
+import { ChangeDetectionStrategy, Component, input } from '@angular/core';
+import { RouterLink, RouterLinkActive } from '@angular/router';
+
+/** The three pages of one sample, in the order of the work, with the way back to the list. */
+@Component({
+  selector: 'ts-sample-steps',
+  changeDetection: ChangeDetectionStrategy.OnPush,
+  imports: [RouterLink, RouterLinkActive],
+  template: `
+    <nav aria-label="Sample">
+      <a [routerLink]="['/models', modelId(), 'sample']" class="back">All samples</a>
+      <span class="file" [title]="fileName()">{{ fileName() }}</span>
+      @for (step of steps; track step.path) {
+        @if (open().includes(step.path)) {
+          <a
+            [routerLink]="['/models', modelId(), 'sample', sampleId(), step.path]"
+            routerLinkActive="here"
+            ariaCurrentWhenActive="page"
+          >
+            {{ step.label }}
+          </a>
+        } @else {
+          <span class="ahead">{{ step.label }}</span>
+        }
+      }
+    </nav>
+  `,
+  styles: `
+    nav {
+      display: flex;
+      flex-wrap: wrap;
+      gap: 4px 20px;
+      align-items: baseline;
+      border-bottom: 1px solid var(--ts-hairline);
+    }
+    a,
+    span {
+      padding: 6px 0;
+      min-height: 24px;
+    }
+    .file {
+      color: var(--ts-ink-2);
+      max-width: 32ch;
+      overflow: hidden;
+      text-overflow: ellipsis;
+      white-space: nowrap;
+      margin-right: auto;
+    }
+    a.here {
+      font-weight: 600;
+      color: var(--ts-ink);
+      text-decoration: none;
+      box-shadow: inset 0 -3px 0 var(--ts-primary);
+    }
+    .ahead {
+      color: var(--ts-ink-2);
+    }
+  `,
+})
+export class SampleSteps {
+  readonly modelId = input.required<string>();
+  readonly sampleId = input.required<string>();
+  readonly fileName = input('');
+  /** Steps that can be visited now. */
+  readonly open = input.required<readonly string[]>();
+  protected readonly steps = [
+    { path: 'reading', label: 'Reading' },
+    { path: 'columns', label: 'Columns' },
+    { path: 'definition', label: 'Definition' },
+  ];
+}

@@ -1,0 +1,101 @@
+import { ChangeDetectionStrategy, Component, computed, input, signal } from '@angular/core';
+import type { DefinitionCounts, WaterfallStep } from '@tallystone/contracts/samples/definition';
+import { scaleLinear } from 'd3-scale';
+import { Column } from '../../../ui/column';
+import { ElementWidth } from '../../../ui/element-width';
+import { FigureFrame, FigurePoint } from '../../../ui/figure-frame';
+import { MINUS, count, plural, share } from '../../../ui/numbers';
+import { badRateOut, countsFinding } from './findings';
+
+const row = 44;
+
+/** From the rows of the file down to development: what each step takes out, and what is left. */
+@Component({
+  selector: 'ts-waterfall-figure',
+  changeDetection: ChangeDetectionStrategy.OnPush,
+  imports: [ElementWidth, FigureFrame, FigurePoint],
+  template: `
+    <ts-figure title="From the file to development" [finding]="finding()" [table]="table()">
+      <div (tsWidth)="width.set($event)">
+        <svg [attr.viewBox]="'0 0 ' + width() + ' ' + height()" [attr.width]="width()" [attr.height]="height()">
+          @for (bar of bars(); track bar.index) {
+            <svg:text x="0" [attr.y]="bar.y + 13" class="ts-label">{{ bar.step.label }}</svg:text>
+            <svg:text [attr.x]="width()" [attr.y]="bar.y + 13" text-anchor="end">{{ bar.words }}</svg:text>
+            <svg:rect
+              [tsPoint]="bar.read"
+              tsPointSeries="steps"
+              class="left"
+              x="0"
+              [attr.y]="bar.y + 19"
+              [attr.width]="bar.left"
+              height="12"
+            />
+            @if (bar.step.out > 0) {
+              <svg:rect class="out" [attr.x]="bar.left" [attr.y]="bar.y + 19.75" [attr.width]="bar.out" height="10.5" />
+              <svg:path class="notch" [attr.d]="'M' + bar.left + ' ' + (bar.y + 17) + 'v16'" />
+            }
+          }
+        </svg>
+      </div>
+    </ts-figure>
+  `,
+  styles: `
+    .left {
+      fill: var(--ts-primary);
+    }
+    .out {
+      fill: var(--ts-sunk);
+      stroke: var(--ts-ahead);
+      stroke-width: 1.2;
+      stroke-dasharray: 3 2;
+    }
+    .notch {
+      stroke: var(--ts-ink);
+      stroke-width: 1.6;
+    }
+  `,
+})
+export class WaterfallFigure {
+  readonly counts = input.required<DefinitionCounts>();
+  protected readonly width = signal(640);
+  protected readonly height = computed(() => this.counts().waterfall.length * row + 4);
+  protected readonly finding = computed(() => countsFinding(this.counts()));
+
+  protected readonly bars = computed(() => {
+    const { waterfall } = this.counts();
+    const x = scaleLinear()
+      .domain([0, Math.max(1, waterfall[0]?.left ?? 1)])
+      .range([0, this.width()]);
+    return waterfall.map((step, index) => {
+      const rate = badRateOut(step);
+      const out =
+        step.out > 0
+          ? `${MINUS}${count(step.out)}${rate === null ? '' : `, bad rate ${share(rate)}`}`
+          : step.kind === 'source' || step.kind === 'development'
+            ? ''
+            : 'none';
+      const words = out === '' ? count(step.left) : `${out}; ${count(step.left)} left`;
+      return {
+        index,
+        step,
+        y: index * row + 2,
+        left: x(step.left),
+        out: Math.max(0, x(step.out)),
+        words,
+        read: `${step.label}: ${out === '' ? '' : `${plural(step.out, 'row')} out, `}${count(step.left)} left`,
+      };
+    });
+  });
+
+  protected readonly table = computed(() => {
+    const columns: readonly Column<WaterfallStep>[] = [
+      { key: 'step', label: 'Step', value: (step) => step.label },
+      { key: 'out', label: 'Rows out', kind: 'count', value: (step) => step.out },
+      { key: 'goods', label: 'Goods out', kind: 'count', value: (step) => step.outGoods },
+      { key: 'bads', label: 'Bads out', kind: 'count', value: (step) => step.outBads },
+      { key: 'rate', label: 'Bad rate', unit: '%', kind: 'share', value: badRateOut },
+      { key: 'left', label: 'Rows left', kind: 'count', value: (step) => step.left },
+    ];
+    return { columns, rows: this.counts().waterfall };
+  });
+}
