@@ -8,12 +8,14 @@ import { runEvents } from '../runs/record-events';
 import { sampleEvents } from '../samples/record-events';
 import { scorecardEvents } from '../scorecards/record-events';
 import { sessionEvents } from '../session/record-events';
+import { validationEvents } from '../validation/record-events';
+import { versionEvents } from '../versions/record-events';
 import { recordEvents } from './record-events';
 
 /**
  * Every act the record knows. An entity adds its list here: nothing else is accepted by `appendRecord`.
  */
-export const RecordEvent = z.discriminatedUnion('action', [...sessionEvents, ...peopleEvents, ...runEvents, ...recordEvents, ...outOfTimeEvents, ...modelEvents, ...sampleEvents, ...binningEvents, ...fitEvents, ...scorecardEvents]);
+export const RecordEvent = z.discriminatedUnion('action', [...sessionEvents, ...peopleEvents, ...runEvents, ...recordEvents, ...outOfTimeEvents, ...modelEvents, ...sampleEvents, ...binningEvents, ...fitEvents, ...scorecardEvents, ...versionEvents, ...validationEvents]);
 export type RecordEvent = z.input<typeof RecordEvent>;
 
 export const recordActions: readonly string[] = RecordEvent.options.map((option) => option.shape.action.value);

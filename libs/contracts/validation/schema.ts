@@ -50,8 +50,9 @@ export const Replication = z
     largestDifference: number,
     /** Intercept, coefficients and points first; beyond those only what differs. */
     rows: z.array(HalvesRow),
+    /** Rounded scores of every applicant with a known outcome, all partitions. */
     scoresCompared: z.int(),
-    scoresDiffering: z.int(),
+    scoresEqual: z.boolean(),
     performance: z.array(PartitionAuc),
     dataSha256: sha,
     specificationSha256: sha,
@@ -72,7 +73,7 @@ export const StabilityRow = z.object({
   sameSign: nullable,
   lower: nullable,
   upper: nullable,
-  /** By bin: points of the version and the 2.5 % and 97.5 % percentiles over resamples. */
+  /** By bin, against neutral (WOE 0): Factor x coefficient x WOE of the version, and its 2.5 % and 97.5 % percentiles over resamples, WOE held. */
   bins: z.array(z.object({ label: z.string(), points: number, lower: nullable, upper: nullable })),
 });
 

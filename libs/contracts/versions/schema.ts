@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { versionAbilities, versionListAbilities } from './abilities';
 import { ModelState } from '../models/schema';
 
 const number = z.number();
@@ -112,12 +113,12 @@ export const Version = VersionSummary.extend({
   lambda: number,
   acts: z.array(ActEntry),
   gates: z.array(Gate),
-  abilities: z.array(z.enum(['submit', 'withdraw', 'start', 'conclude', 'accept', 'return', 'replicate', 'study-stability', 'write-texts', 'make-document'])),
+  abilities: z.array(z.enum(versionAbilities)),
   /** Why an act is not open to this person, by act: separation of duties and the like. */
   refusals: z.record(z.string(), z.string()),
 }).meta({ id: 'Version' });
 
-export const VersionList = z.object({ versions: z.array(VersionSummary), abilities: z.array(z.enum(['freeze'])) }).meta({ id: 'VersionList' });
+export const VersionList = z.object({ versions: z.array(VersionSummary), abilities: z.array(z.enum(versionListAbilities)) }).meta({ id: 'VersionList' });
 export const ReviewList = z.object({ versions: z.array(VersionSummary) }).meta({ id: 'ReviewList' });
 /** Result of the run "freeze version" (Run.result). */
 export const FreezeResult = z.object({ versionId: z.uuid(), number: z.int() });

@@ -8,6 +8,7 @@ import { defineRecord } from './record';
 import { defineRun } from './run';
 import { defineSample } from './sample';
 import { defineScorecard } from './scorecard';
+import { defineVersion } from './version';
 
 /** Binds every model to a database; one database per process. An entity adds its own define function here. */
 export function defineModels(sequelize: Sequelize): void {
@@ -20,4 +21,5 @@ export function defineModels(sequelize: Sequelize): void {
   defineBinning(sequelize);
   defineFit(sequelize);
   defineScorecard(sequelize);
+  defineVersion(sequelize);
 }

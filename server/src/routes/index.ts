@@ -12,13 +12,15 @@ import { sessionRoutes } from './session/index';
 import { setUpRoutes } from './set-up/index';
 import { modelRoutes } from './models/index';
 import { sampleRoutes } from './samples/index';
+import { validationRoutes } from './validation/index';
+import { versionRoutes } from './versions/index';
 import type { Route } from './http/route';
 
 /** Every route of the server. An entity adds its list here. */
 export function allRoutes(): Route[] {
   const routes: Route[] = [...sessionRoutes, ...setUpRoutes, ...invitationRoutes, ...peopleRoutes, ...recordRoutes, ...runRoutes];
   routes.push(...modelRoutes(), ...sampleRoutes());
-  routes.push(...fitRoutes, ...comparisonRoutes, ...scorecardRoutes);
+  routes.push(...fitRoutes, ...comparisonRoutes, ...scorecardRoutes, ...versionRoutes, ...validationRoutes);
   routes.push(...outOfTimeRoutes, ...binningRoutes);
   routes.push(...healthRoutes(() => routes));
   return routes;

@@ -2,8 +2,10 @@ import { classColumn, reclassFine, splitColumn } from '../classing/class-column'
 import { buildScorecard } from './build-scorecard';
 import { compareFits } from './compare-fits';
 import { fitPenaltyPath } from './fit-path';
+import { freezeVersion } from './freeze-version';
 import { hashPassword, verifyPassword } from './passwords';
 import { prepareSample } from './prepare-sample';
+import { resampleVersion } from './study-stability';
 
 /**
  * Every task that can run in a thread, by name. A task is a pure function (payload, control) => result; it knows no database and no clock.
@@ -19,6 +21,8 @@ export const tasks = {
   'password.verify': verifyPassword,
   'sample.prepare': prepareSample,
   'scorecard.build': buildScorecard,
+  'version.freeze': freezeVersion,
+  'version.resample': resampleVersion,
 } as const;
 
 export type Tasks = typeof tasks;

@@ -1,3 +1,4 @@
+import { freezeVersion, replicateVersion, studyVersionStability } from './versions';
 import type { Handler } from '../handler';
 import { classBinning } from './binnings';
 import { fitPenaltyPath } from './fits';
@@ -5,4 +6,4 @@ import { verifyRecord } from './record';
 import { confirmSample, readSample } from './samples';
 
 /** Everything a worker can do. An entity adds its handlers here. */
-export const handlers: readonly Handler[] = [verifyRecord, classBinning, readSample, confirmSample, fitPenaltyPath];
+export const handlers: readonly Handler[] = [verifyRecord, classBinning, readSample, confirmSample, fitPenaltyPath, freezeVersion, replicateVersion, studyVersionStability];

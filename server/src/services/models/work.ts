@@ -4,6 +4,7 @@ import { binningWorkStep } from '../binnings/work-step';
 import { fitWorkStep } from '../fits/work-step';
 import { sampleWorkStep } from '../samples/work-step';
 import { scorecardWorkStep } from '../scorecards/work-step';
+import { documentationWorkStep, validationWorkStep, versionWorkStep } from '../versions/work-step';
 
 /** What one entity says about its step: whether it is done or waits for a decision, in one short caption. */
 export interface StepReport {
@@ -30,9 +31,9 @@ const reporters: Record<WorkStepName, StepReporter> = {
   binning: binningWorkStep,
   fit: fitWorkStep,
   scorecard: scorecardWorkStep,
-  version: async () => null,
-  validation: async () => null,
-  documentation: async () => null,
+  version: versionWorkStep,
+  validation: validationWorkStep,
+  documentation: documentationWorkStep,
 };
 
 /** The work's rule. The first step that is not done is the current one; a step that waits for a decision says so wherever it stands. */
