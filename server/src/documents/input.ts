@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import { resultSchema } from '@tallystone/contracts/result/schema';
 import { specificationSchema } from '@tallystone/contracts/specification/schema';
+import { Conclusion, VersionAct } from '@tallystone/contracts/versions/schema';
 
 /**
  * What the model-governance document is made of: frozen evidence, gathered before, and nothing else. The document is a function of this
@@ -47,17 +48,7 @@ export const VersionFacts = z.strictObject({
 
 /** An act on the version that somebody answers for. */
 export const Signature = z.strictObject({
-  act: z.enum([
-    'frozen',
-    'submitted',
-    'validation started',
-    'concluded',
-    'documentation accepted',
-    'documentation returned',
-    'put in use',
-    'retired',
-    'withdrawn',
-  ]),
+  act: VersionAct,
   name: z.string(),
   role: z.string(),
   at: time,
@@ -69,8 +60,8 @@ export const Signature = z.strictObject({
 
 export const Condition = z.strictObject({
   text: z.string(),
-  kind: z.string(),
-  owner: z.string(),
+  kind: z.string().nullable(),
+  owner: z.string().nullable(),
   due: time.nullable(),
   discharged: z.string().nullable(),
 });
@@ -238,16 +229,15 @@ export const Replication = z.strictObject({
   matches: z.boolean(),
   numbersCompared: count,
   numbersDiffering: count,
-  largestCoefficientDifference: maybe,
-  largestPointsDifference: maybe,
-  /** Every rounded score the same. */
-  integerScoresEqual: z.boolean().nullable(),
+  largestDifference: maybe,
+  /** Integer scores of applicants, and how many of them are not equal. */
+  scoresCompared: count,
+  scoresDiffering: count,
   specificationSha256: sha256,
   dataSha256: sha256,
   resultSha256: sha256.nullable(),
-  /** Coefficients of the replication, by column, and its intercept, to be laid beside those of the version. */
-  intercept: maybe,
-  coefficients: z.array(z.strictObject({ column: z.string(), coefficient: z.number() })),
+  /** Numbers of both halves to be laid beside each other: intercept, coefficients, points, whatever differs. */
+  rows: z.array(z.strictObject({ label: z.string(), fit: maybe, replication: maybe, difference: maybe, meets: z.boolean() })),
 });
 
 export const Finding = z.strictObject({
@@ -265,9 +255,10 @@ export const Validation = z.strictObject({
   scope: z.string().nullable(),
   /** The validator's own words; nobody else can change them. */
   opinion: z.string().nullable(),
-  conclusion: z.enum(['fit for use', 'fit with conditions', 'not fit']).nullable(),
+  conclusion: Conclusion.nullable(),
   concludedAt: time.nullable(),
-  findings: z.array(Finding),
+  /** Null where findings are not recorded: then "not evidenced", which is not the same as none. */
+  findings: z.array(Finding).nullable(),
 });
 
 export const HistoryEntry = z.strictObject({

@@ -5,9 +5,10 @@ import { join } from 'node:path';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { evidenceFingerprint } from './fingerprints';
 import type { DocumentInput } from './input';
-import { renderDocument } from './render-document';
+import { pagesOf, renderDocument } from './render-document';
 import { page } from './tokens';
-import { hash, inventedInput } from './testing/invented-input';
+import { inventedInput } from './testing/invented-input';
+import { hash } from './testing/invented-result';
 
 /** Text and geometry are read back with poppler's pdftotext and pdfinfo, an independent reader. */
 const fixedDate = new Date('2026-11-30T12:00:00.000Z');
@@ -136,6 +137,7 @@ describe('the document of a complete version', () => {
     ]) {
       expect(cover).toContain(whole);
     }
+    expect(pagesOf(bytes)).toBe(pages);
     const feet = words.match(
       new RegExp(
         `version ${input.version.fingerprint.slice(0, 16)} evidence ${evidenceFingerprint(input.evidence).slice(0, 16)} record 251`,
@@ -258,7 +260,7 @@ describe('a document of uncommon size', () => {
       writtenAt: '2026-11-20',
     });
     input.validation!.opinion = long;
-    input.validation!.findings[0].description = long;
+    input.validation!.findings![0].description = long;
     input.columns[3].label = 'Payment to income, of the loan asked for, before any other loan is counted, in hundredths';
     input.result.characteristics[1].bins[0].label = Array.from({ length: 400 }, (_, index) => `category ${index}`).join(', ');
     input.result.characteristics[2].bins[1].label = 'x'.repeat(300);

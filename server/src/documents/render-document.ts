@@ -71,6 +71,13 @@ export async function renderDocument(input: unknown, options: { fixedDate: Date 
   return sheet.finish();
 }
 
+/** Pages of a document made here, read from its page tree. */
+export function pagesOf(bytes: Buffer): number {
+  const found = /\/Type \/Pages\s+\/Count (\d+)/.exec(bytes.toString('latin1'));
+  if (found === null) throw new Error('These bytes have no page tree.');
+  return Number(found[1]);
+}
+
 /** On every page: which version, which evidence, which record, which page of how many. */
 function drawFooters(sheet: Sheet, input: DocumentInput): void {
   const { model, version, recordHead } = input;

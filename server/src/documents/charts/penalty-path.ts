@@ -8,7 +8,7 @@ import { linearScale, logScale, logTicks, Plot, roundTicks, tickDecimals, type S
 const devianceHeight = 96;
 const coefficientHeight = 150;
 const strokeRow = 9.5;
-const mostRows = 36;
+export const mostRows = 36;
 const gutter = 92;
 
 /** A characteristic's place on the path: one line per coefficient, the first penalty at which any is not zero. */

@@ -129,5 +129,8 @@ export function writeFinalModel(writer: Writer): void {
     });
   }
   writer.caution(judgementCaution);
-  writer.authorTexts(10, ['Business sense of each characteristic']);
+  writer.authorTexts(10, [
+    'Business sense of each characteristic',
+    ...(flipped.length > 0 ? ['Reasons for sign exceptions'] : []),
+  ]);
 }

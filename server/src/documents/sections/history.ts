@@ -28,7 +28,7 @@ export function writeHistory(writer: Writer): void {
     ['Record head', `act ${input.recordHead.sequence}`],
     ['Hash', input.recordHead.hash],
   ]);
-  writer.authorTexts(18, []);
+  writer.authorTexts(18, ['Reasons for changes']);
 }
 
 /** Annex: evidence index and glossary. */

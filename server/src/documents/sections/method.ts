@@ -1,5 +1,5 @@
 import type { FitSettings } from '@tallystone/contracts/specification/types';
-import { drawPenaltyPath, penaltyPathHeight } from '../charts/penalty-path';
+import { drawPenaltyPath, mostRows, penaltyPathHeight } from '../charts/penalty-path';
 import { fixed, intervalText, percent, plural, significant, timeText, whole } from '../number-texts';
 import type { Writer } from '../page/writer';
 import { classingName, penaltyName, ruleName } from './wording';
@@ -62,7 +62,8 @@ export function writeMethod(writer: Writer): void {
       (box) => drawPenaltyPath(writer.sheet, box, result, (column) => writer.label(column)),
     );
     writer.note(
-      'Strong penalties at the left. Band: one standard error either side of the cross-validated deviance. Strokes: penalties at which a characteristic is in the model; dark lines and strokes are those kept at the chosen penalty.',
+      'Strong penalties at the left. Band: one standard error either side of the cross-validated deviance. Strokes: penalties at which a characteristic is in the model; dark lines and strokes are those kept at the chosen penalty.' +
+        strokesShown(result.characteristics.length),
     );
   }
   writeCrossValidation(writer);
@@ -70,6 +71,10 @@ export function writeMethod(writer: Writer): void {
   writeStability(writer);
   writer.authorTexts(9, ['Why this penalty']);
 }
+
+/** Where there is no room for every characteristic, how many have a row of strokes. */
+const strokesShown = (count: number): string =>
+  count > mostRows ? ` The first ${whole(mostRows)} of ${whole(count)} to enter have a row of strokes.` : '';
 
 function lambdaText(fit: FitSettings, made: number): string {
   const { lambda } = fit;

@@ -1,6 +1,6 @@
 import type { Writer } from '../page/writer';
 import { area, fixed, percent, plural, significant, timeText, whole } from '../number-texts';
-import { aucWithInterval, byPartition, judgementCaution, partitionLabel, partitions, penaltyName } from './wording';
+import { actName, aucWithInterval, byPartition, judgementCaution, partitionLabel, partitions, penaltyName } from './wording';
 
 /** 1 Summary, status, conditions. */
 export function writeSummary(writer: Writer): void {
@@ -65,7 +65,7 @@ export function writeSummary(writer: Writer): void {
       ],
       rows: input.signatures.map((signature) => ({
         cells: [
-          signature.act,
+          actName[signature.act],
           signature.name,
           signature.role,
           timeText(signature.at),
@@ -90,14 +90,14 @@ export function writeSummary(writer: Writer): void {
       rows: input.conditions.map((condition) => ({
         cells: [
           condition.text,
-          condition.kind,
-          condition.owner,
+          condition.kind ?? '–',
+          condition.owner ?? '–',
           condition.due === null ? '–' : timeText(condition.due),
           condition.discharged ?? 'open',
         ],
       })),
     });
   }
-  writer.authorTexts(1, ['Recommendation']);
+  writer.authorTexts(1, ['Recommendation', 'Monitoring plan']);
   writer.caution(judgementCaution);
 }
