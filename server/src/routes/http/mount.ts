@@ -8,7 +8,7 @@ import { inTransaction } from '../../database/transaction';
 import { requestSeconds } from '../../logging/metrics';
 import { demand } from '../../policies/decision';
 import { problemsOf } from '../../problems/from-error';
-import { Problem, notFound } from '../../problems/problem';
+import { Problem, invalid, notFound } from '../../problems/problem';
 import { checkCrossSite } from './cross-site';
 import { matchRevision, tagOf } from './entity-tag';
 import { once } from './idempotency';
@@ -45,7 +45,8 @@ function handlerOf(context: Context, route: Route): RequestHandler {
     }
     if (changes(endpoint)) checkCrossSite(context.config, request, person !== null);
     if (recipe.admit) demand(recipe.admit(person));
-    const call = await read(context, endpoint, person, request, response, readJson);
+    const { call, refusal } = await read(context, endpoint, person, request, response, readJson);
+    if (refusal && !recipe.find && !recipe.authorise) throw refusal;
 
     const steps = async (tx: Transaction | null): Promise<unknown> => {
       const inside: Call<Endpoint, Access> = { ...call, tx: tx as never };
@@ -53,6 +54,7 @@ function handlerOf(context: Context, route: Route): RequestHandler {
       if (subject === null) throw notFound();
       const found = { ...inside, subject } as never;
       if (recipe.authorise) demand(await recipe.authorise(found));
+      if (refusal) throw refusal;
       const answer = await recipe.act(found);
       // Remembered so that `afterwards` sees the same subject.
       settled = found;
@@ -80,7 +82,7 @@ async function read(
   request: Request,
   response: Response,
   readJson: RequestHandler,
-): Promise<Call<Endpoint, Access>> {
+): Promise<{ call: Call<Endpoint, Access>; refusal: Problem | null }> {
   const wantsJson = endpoint.body !== undefined && endpoint.body !== 'bytes';
   if (wantsJson) {
     if (hasBody(request) && !request.is('application/json')) {
@@ -96,11 +98,8 @@ async function read(
   if (query && !query.success) problems.push(...problemsOf(query.error, 'query'));
   const body = wantsJson ? (endpoint.body as Exclude<Endpoint['body'], 'bytes' | undefined>).safeParse(request.body ?? {}) : undefined;
   if (body && !body.success) problems.push(...problemsOf(body.error, 'body'));
-  if (problems.length > 0) {
-    const detail = problems.length === 1 ? problems[0].message : `${problems.length} things of the request are not valid.`;
-    throw new Problem(422, problemCodes.invalid, detail, { problems });
-  }
-  return {
+  const refusal = problems.length > 0 ? invalid(problems) : null;
+  const call: Call<Endpoint, Access> = {
     context,
     person,
     params: (params?.data ?? {}) as never,
@@ -115,6 +114,7 @@ async function read(
     match: (revision) => matchRevision(request, revision),
     tag: (revision) => void response.setHeader('ETag', tagOf(revision)),
   };
+  return { call, refusal };
 }
 
 const hasBody = (request: Request): boolean => request.headers['transfer-encoding'] !== undefined || Number(request.headers['content-length'] ?? 0) > 0;

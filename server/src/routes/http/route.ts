@@ -35,15 +35,16 @@ export interface Call<E extends Endpoint, A extends Access, Subject = undefined>
 
 /**
  * The recipe of one route, in the order in which its steps run: limit, authenticate, admit, validate, transaction, find, authorise, act,
- * present. What is not needed is left out.
+ * present. What is not needed is left out. An input that is not valid is refused after `authorise`: whoever may not see a thing learns
+ * nothing from how it is refused, which is why neither `find` nor `authorise` is given query or body.
  */
 export interface Recipe<E extends Endpoint, A extends Access, Subject> {
   readonly access: A;
   /** Refuses by person alone, before anything of the request is read. */
   readonly admit?: (person: PersonOf<A>) => Decision;
   /** Loads what the request is about. Null is answered with 404, the same as what one may not see. */
-  readonly find?: (call: Call<E, A>) => Promise<Subject | null> | Subject | null;
-  readonly authorise?: (call: Call<E, A, Subject>) => Decision | Promise<Decision>;
+  readonly find?: (call: Omit<Call<E, A>, 'query' | 'body'>) => Promise<Subject | null> | Subject | null;
+  readonly authorise?: (call: Omit<Call<E, A, Subject>, 'query' | 'body'>) => Decision | Promise<Decision>;
   /** Does the work and answers with what the endpoint promises. */
   readonly act: (call: Call<E, A, Subject>) => Promise<AnswerOf<E>> | AnswerOf<E>;
   /** Runs after the transaction has been committed: for what cannot be rolled back. */

@@ -1,0 +1,7 @@
+import type { AccessRow } from './access';
+import { baseRows } from './base';
+import { modelRows, sampleRows } from './models';
+import { binningRows, fitRows } from './work';
+
+/** The route x role table. An entity adds its rows here; a route without one fails routes.spec.ts. */
+export const accessTable: readonly AccessRow[] = [...baseRows, ...modelRows, ...binningRows, ...fitRows, ...sampleRows];
