@@ -35,7 +35,8 @@ export class ColumnBuilder {
   take(rows: number): ColumnSegment {
     const { texts } = this;
     const from = this.codes.subarray(0, rows);
-    const codes = texts.length <= 0x100 ? Uint8Array.from(from) : texts.length <= 0x1_0000 ? Uint16Array.from(from) : from.slice();
+    const codes =
+      texts.length <= 0x100 ? Uint8Array.from(from) : texts.length <= 0x1_0000 ? Uint16Array.from(from) : from.slice();
     this.slots.fill(0);
     this.texts = [];
     return { codes, texts };
