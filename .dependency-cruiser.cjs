@@ -25,7 +25,8 @@ module.exports = {
     },
     {
       name: 'shipped-code-needs-no-development-package',
-      comment: 'npm installs development packages for work on the project; what is served must do without them. The thread entry outside the bundle is for work on the project.',
+      comment:
+        'npm installs development packages for work on the project; what is served must do without them. The thread entry outside the bundle is for work on the project.',
       severity: 'error',
       from: { path: '^(server/src|libs)/', pathNot: except('^server/src/threads/entry\\.mjs$', spec) },
       to: { dependencyTypes: ['npm-dev', 'npm-no-pkg', 'npm-unknown'], dependencyTypesNot: ['type-only'] },
@@ -94,7 +95,10 @@ module.exports = {
       name: 'ui-never-reaches-data-or-pages',
       severity: 'error',
       from: { path: ['^apps/web/src/app/ui/', '^apps/web/src/app/features/[^/]+/ui/'], pathNot: spec },
-      to: { path: ['^apps/web/src/app/shell/', '^apps/web/src/app/features/[^/]+/(data|pages)/'], dependencyTypesNot: ['type-only'] },
+      to: {
+        path: ['^apps/web/src/app/shell/', '^apps/web/src/app/features/[^/]+/(data|pages)/'],
+        dependencyTypesNot: ['type-only'],
+      },
     },
     {
       name: 'shared-ui-and-core-know-no-feature',
@@ -114,25 +118,36 @@ module.exports = {
       name: 'only-routes-know-express',
       severity: 'error',
       from: { path: '^server/src/', pathNot: except('^server/src/(routes/|app\\.ts|main\\.ts)', spec) },
-      to: { path: 'node_modules/(@types/)?(express|express-session|express-rate-limit|helmet|multer|passport|passport-local|connect-pg-simple|pino-http|swagger-ui-express)/' },
+      to: {
+        path: 'node_modules/(@types/)?(express|express-session|express-rate-limit|helmet|multer|passport|passport-local|connect-pg-simple|pino-http|swagger-ui-express)/',
+      },
     },
     {
       name: 'routes-reach-policies-and-services',
       severity: 'error',
       from: { path: '^server/src/routes/', pathNot: spec },
-      to: { path: '^server/src/(models|migrations|storage|documents|jobs/handlers|cli|demo)/', dependencyTypesNot: ['type-only'] },
+      to: {
+        path: '^server/src/(models|migrations|storage|documents|jobs/handlers|cli|demo)/',
+        dependencyTypesNot: ['type-only'],
+      },
     },
     {
       name: 'services-reach-down',
       severity: 'error',
       from: { path: '^server/src/services/', pathNot: spec },
-      to: { path: '^server/src/(routes|migrations|documents|jobs/handlers|cli|demo|app\\.ts|main\\.ts)', dependencyTypesNot: ['type-only'] },
+      to: {
+        path: '^server/src/(routes|migrations|documents|jobs/handlers|cli|demo|app\\.ts|main\\.ts)',
+        dependencyTypesNot: ['type-only'],
+      },
     },
     {
       name: 'handlers-reach-services-documents-and-mail',
       severity: 'error',
       from: { path: '^server/src/jobs/handlers/', pathNot: spec },
-      to: { path: '^server/src/(routes|policies|models|migrations|cli|demo|app\\.ts|main\\.ts)', dependencyTypesNot: ['type-only'] },
+      to: {
+        path: '^server/src/(routes|policies|models|migrations|cli|demo|app\\.ts|main\\.ts)',
+        dependencyTypesNot: ['type-only'],
+      },
     },
     {
       name: 'job-definitions-know-no-work',
@@ -151,13 +166,20 @@ module.exports = {
       comment: 'The list of queues is the exception: a migration makes them, as the owner.',
       severity: 'error',
       from: { path: '^server/src/(models|migrations)/', pathNot: spec },
-      to: { path: '^server/src/(routes|policies|services|storage|documents|mail|jobs)/', pathNot: '^server/src/jobs/(queues\\.ts|definitions/)', dependencyTypesNot: ['type-only'] },
+      to: {
+        path: '^server/src/(routes|policies|services|storage|documents|mail|jobs)/',
+        pathNot: '^server/src/jobs/(queues\\.ts|definitions/)',
+        dependencyTypesNot: ['type-only'],
+      },
     },
     {
       name: 'documents-never-query',
       severity: 'error',
       from: { path: '^server/src/documents/', pathNot: spec },
-      to: { path: '^server/src/(routes|policies|services|models|storage|database|mail|jobs)/|node_modules/(sequelize|pg|pg-boss)/', dependencyTypesNot: ['type-only'] },
+      to: {
+        path: '^server/src/(routes|policies|services|models|storage|database|mail|jobs)/|node_modules/(sequelize|pg|pg-boss)/',
+        dependencyTypesNot: ['type-only'],
+      },
     },
     {
       name: 'replay-needs-no-server',
@@ -173,7 +195,10 @@ module.exports = {
       name: 'threads-touch-no-database',
       severity: 'error',
       from: { path: '^server/src/threads/', pathNot: spec },
-      to: { path: '^server/src/(routes|policies|services|models|migrations|database)/|node_modules/(sequelize|pg|pg-boss|express)/', dependencyTypesNot: ['type-only'] },
+      to: {
+        path: '^server/src/(routes|policies|services|models|migrations|database)/|node_modules/(sequelize|pg|pg-boss|express)/',
+        dependencyTypesNot: ['type-only'],
+      },
     },
   ],
   options: {
@@ -181,6 +206,10 @@ module.exports = {
     exclude: { path: '^(dist|coverage|\\.angular)/' },
     tsPreCompilationDeps: true,
     tsConfig: { fileName: 'tsconfig.json' },
-    enhancedResolveOptions: { exportsFields: ['exports'], conditionNames: ['import', 'node', 'default', 'types'], mainFields: ['module', 'main', 'types'] },
+    enhancedResolveOptions: {
+      exportsFields: ['exports'],
+      conditionNames: ['import', 'node', 'default', 'types'],
+      mainFields: ['module', 'main', 'types'],
+    },
   },
 };

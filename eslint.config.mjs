@@ -7,12 +7,17 @@ import tseslint from 'typescript-eslint';
 const reasons = {
   rules: {
     'disable-with-reason': {
-      meta: { type: 'problem', schema: [], messages: { missing: 'Say why the rule does not apply here: {{directive}} name -- reason' } },
+      meta: {
+        type: 'problem',
+        schema: [],
+        messages: { missing: 'Say why the rule does not apply here: {{directive}} name -- reason' },
+      },
       create: (context) => ({
         Program() {
           for (const comment of context.sourceCode.getAllComments()) {
             const directive = /^\s*(eslint-disable(?:-next-line|-line)?)\b/.exec(comment.value)?.[1];
-            if (directive && !/\s--\s+\S/.test(comment.value)) context.report({ loc: comment.loc, messageId: 'missing', data: { directive } });
+            if (directive && !/\s--\s+\S/.test(comment.value))
+              context.report({ loc: comment.loc, messageId: 'missing', data: { directive } });
           }
         },
       }),
@@ -36,8 +41,14 @@ const typed = {
 const strictness = {
   '@typescript-eslint/no-explicit-any': 'error',
   '@typescript-eslint/consistent-type-imports': ['error', { fixStyle: 'inline-type-imports', disallowTypeAnnotations: false }],
-  '@typescript-eslint/no-unused-vars': ['error', { argsIgnorePattern: '^_', varsIgnorePattern: '^_', caughtErrors: 'none', ignoreRestSiblings: true }],
-  '@typescript-eslint/no-floating-promises': ['error', { allowForKnownSafeCalls: [{ from: 'package', package: 'node:test', name: ['it'] }] }],
+  '@typescript-eslint/no-unused-vars': [
+    'error',
+    { argsIgnorePattern: '^_', varsIgnorePattern: '^_', caughtErrors: 'none', ignoreRestSiblings: true },
+  ],
+  '@typescript-eslint/no-floating-promises': [
+    'error',
+    { allowForKnownSafeCalls: [{ from: 'package', package: 'node:test', name: ['it'] }] },
+  ],
   '@typescript-eslint/switch-exhaustiveness-check': ['error', { considerDefaultExhaustiveForUnions: true }],
   '@typescript-eslint/restrict-template-expressions': ['error', { allowNumber: true, allowBoolean: true }],
   '@typescript-eslint/require-await': 'off',
@@ -53,7 +64,18 @@ const strictness = {
 };
 
 export default tseslint.config(
-  { ignores: ['dist/', 'node_modules/', '.angular/', '.tallystone/', 'coverage/', 'test-results/', 'playwright-report/', '**/fixtures/**'] },
+  {
+    ignores: [
+      'dist/',
+      'node_modules/',
+      '.angular/',
+      '.tallystone/',
+      'coverage/',
+      'test-results/',
+      'playwright-report/',
+      '**/fixtures/**',
+    ],
+  },
   { linterOptions: { reportUnusedDisableDirectives: 'error' }, plugins: { reasons } },
 
   // --- Plain JavaScript: tools and configuration
@@ -64,7 +86,20 @@ export default tseslint.config(
       ecmaVersion: 2023,
       sourceType: 'module',
       globals: Object.fromEntries(
-        ['process', 'console', 'Buffer', 'URL', 'setTimeout', 'clearTimeout', 'setInterval', 'clearInterval', 'fetch', 'AbortSignal', 'performance', 'structuredClone'].map((name) => [name, 'readonly']),
+        [
+          'process',
+          'console',
+          'Buffer',
+          'URL',
+          'setTimeout',
+          'clearTimeout',
+          'setInterval',
+          'clearInterval',
+          'fetch',
+          'AbortSignal',
+          'performance',
+          'structuredClone',
+        ].map((name) => [name, 'readonly']),
       ),
     },
     rules: {
@@ -83,7 +118,12 @@ export default tseslint.config(
     rules: strictness,
   },
   // Configuration files and declarations beside JavaScript lie outside every tsconfig.
-  { files: ['*.ts', 'tools/**/*.mts'], extends: [tseslint.configs.disableTypeChecked], languageOptions: { parserOptions: { projectService: false } }, rules: { '@typescript-eslint/no-misused-promises': 'off', '@typescript-eslint/no-floating-promises': 'off' } },
+  {
+    files: ['*.ts', 'tools/**/*.mts'],
+    extends: [tseslint.configs.disableTypeChecked],
+    languageOptions: { parserOptions: { projectService: false } },
+    rules: { '@typescript-eslint/no-misused-promises': 'off', '@typescript-eslint/no-floating-promises': 'off' },
+  },
 
   // --- Libraries: neither browser nor Node.js
   { files: ['libs/**/*.ts'], ignores: ['**/*.spec.ts'], rules: { 'no-restricted-globals': ['error', ...noHost] } },
@@ -92,7 +132,10 @@ export default tseslint.config(
     ignores: ['**/*.spec.ts'],
     rules: {
       'no-restricted-globals': ['error', ...noHost, { name: 'Date', message: 'Numbers know no clock.' }],
-      'no-restricted-properties': ['error', { object: 'Math', property: 'random', message: 'Use a seeded generator: results have to be repeatable.' }],
+      'no-restricted-properties': [
+        'error',
+        { object: 'Math', property: 'random', message: 'Use a seeded generator: results have to be repeatable.' },
+      ],
     },
   },
 
@@ -115,7 +158,11 @@ export default tseslint.config(
     rules: {
       'no-restricted-syntax': [
         'error',
-        { selector: "CallExpression > MemberExpression[property.name=/^(only|skip|todo|fixme|skipIf|runIf)$/][object.name=/^(it|test|describe|suite)$/]", message: 'A test runs, always and with the others.' },
+        {
+          selector:
+            'CallExpression > MemberExpression[property.name=/^(only|skip|todo|fixme|skipIf|runIf)$/][object.name=/^(it|test|describe|suite)$/]',
+          message: 'A test runs, always and with the others.',
+        },
       ],
     },
   },
@@ -143,7 +190,13 @@ export default tseslint.config(
       '@typescript-eslint/no-restricted-imports': [
         'error',
         {
-          patterns: [{ group: ['zod', 'zod/*', '@tallystone/contracts/*/schema', '@tallystone/contracts/*/endpoints'], allowTypeImports: true, message: 'Schemas are heavy: they are loaded by data/ code, and elsewhere their types alone.' }],
+          patterns: [
+            {
+              group: ['zod', 'zod/*', '@tallystone/contracts/*/schema', '@tallystone/contracts/*/endpoints'],
+              allowTypeImports: true,
+              message: 'Schemas are heavy: they are loaded by data/ code, and elsewhere their types alone.',
+            },
+          ],
         },
       ],
     },

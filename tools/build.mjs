@@ -39,7 +39,10 @@ function filesUnder(relative) {
 /** SHA-256 over names and contents: what the result was made of. Specs do not take part in it. */
 function stampOf(sources) {
   const hash = createHash('sha256').update(process.versions.node.split('.')[0]);
-  for (const file of sources.flatMap(filesUnder).filter((name) => !name.endsWith('.spec.ts')).sort()) {
+  for (const file of sources
+    .flatMap(filesUnder)
+    .filter((name) => !name.endsWith('.spec.ts'))
+    .sort()) {
     hash.update(`\0${file}\0`).update(fs.readFileSync(at(file)));
   }
   return hash.digest('hex');
@@ -93,14 +96,19 @@ async function buildServer() {
       logLevel: 'silent',
     });
   } catch (error) {
-    const messages = (error.errors ?? []).map(({ text, location }) => `${location ? `${location.file}:${location.line}: ` : ''}${text}`);
+    const messages = (error.errors ?? []).map(
+      ({ text, location }) => `${location ? `${location.file}:${location.line}: ` : ''}${text}`,
+    );
     throw new SetupProblem(`The server does not build:\n${messages.join('\n') || error.message}`);
   }
 }
 
 async function buildWeb(onChild) {
   const ng = at('node_modules/@angular/cli/bin/ng.js');
-  const done = await runProgram(process.execPath, [ng, 'build', '--progress=false'], { env: { NG_CLI_ANALYTICS: 'false', CI: '1' }, onChild });
+  const done = await runProgram(process.execPath, [ng, 'build', '--progress=false'], {
+    env: { NG_CLI_ANALYTICS: 'false', CI: '1' },
+    onChild,
+  });
   if (done.code !== 0) throw new SetupProblem(`The client does not build:\n${done.output.trim()}`);
 }
 
@@ -110,7 +118,8 @@ if (process.argv[1] && fs.realpathSync(process.argv[1]) === fileURLToPath(import
   const say = (line) => console.error(line);
   try {
     await ensurePackages({ say });
-    for (const part of asked.length > 0 ? asked : ['server', 'web']) await ensureBuilt(part, { say, force: args.includes('--force') });
+    for (const part of asked.length > 0 ? asked : ['server', 'web'])
+      await ensureBuilt(part, { say, force: args.includes('--force') });
   } catch (error) {
     console.error(error instanceof SetupProblem ? error.message : error);
     process.exitCode = 1;

@@ -30,9 +30,13 @@ export function countVitest({ code }, report) {
   if (!report || !Array.isArray(report.testResults)) return missingReport();
   const tests = report.testResults.flatMap((file) => file.assertionResults);
   const of = (...states) => tests.filter(({ status }) => states.includes(status)).length;
-  const brokenFiles = report.testResults.filter((file) => file.status === 'failed' && !file.assertionResults.some(({ status }) => status === 'failed'));
+  const brokenFiles = report.testResults.filter(
+    (file) => file.status === 'failed' && !file.assertionResults.some(({ status }) => status === 'failed'),
+  );
   const notes = [
-    ...tests.filter(({ status }) => !['passed', 'failed'].includes(status)).map(({ fullName, status }) => `${status}: ${fullName}`),
+    ...tests
+      .filter(({ status }) => !['passed', 'failed'].includes(status))
+      .map(({ fullName, status }) => `${status}: ${fullName}`),
     ...brokenFiles.map((file) => `did not run: ${relative(file.name)}`),
   ];
   const passed = of('passed');
@@ -63,7 +67,9 @@ export function countPlaywright({ code }, report) {
 export function specsUnder(folder) {
   const absolute = path.join(ROOT, folder);
   if (!fs.existsSync(absolute)) return 0;
-  return fs.readdirSync(absolute, { recursive: true, encoding: 'utf8' }).filter((name) => name.endsWith('.spec.ts') && !name.includes('node_modules')).length;
+  return fs
+    .readdirSync(absolute, { recursive: true, encoding: 'utf8' })
+    .filter((name) => name.endsWith('.spec.ts') && !name.includes('node_modules')).length;
 }
 
 /**
@@ -92,7 +98,16 @@ export function steps({ work, long, filter }) {
       name: 'boundaries',
       title: 'Import boundaries',
       slots: 1,
-      command: [...bin('dependency-cruiser/bin/dependency-cruise.mjs'), '--config', '.dependency-cruiser.cjs', 'libs', 'server', 'apps/web/src', 'tests', 'data-demo'],
+      command: [
+        ...bin('dependency-cruiser/bin/dependency-cruise.mjs'),
+        '--config',
+        '.dependency-cruiser.cjs',
+        'libs',
+        'server',
+        'apps/web/src',
+        'tests',
+        'data-demo',
+      ],
       count: oneCheck,
     },
     {
@@ -108,7 +123,15 @@ export function steps({ work, long, filter }) {
       slots: 1,
       folders: ['apps/web/src'],
       report: report('web'),
-      command: [...ng, 'test', '--watch=false', '--progress=false', '--reporters=json', '--reporters=default', `--output-file=${report('web')}`],
+      command: [
+        ...ng,
+        'test',
+        '--watch=false',
+        '--progress=false',
+        '--reporters=json',
+        '--reporters=default',
+        `--output-file=${report('web')}`,
+      ],
       env: { NG_CLI_ANALYTICS: 'false' },
       count: countVitest,
     },
@@ -119,7 +142,15 @@ export function steps({ work, long, filter }) {
       folders: ['libs', 'server/src', 'tests/reference', 'tests/api'],
       needs: ['postgres'],
       report: report('unit'),
-      command: [...bin('vitest/vitest.mjs'), 'run', ...filter, '--maxWorkers=2', '--reporter=default', '--reporter=json', `--outputFile.json=${report('unit')}`],
+      command: [
+        ...bin('vitest/vitest.mjs'),
+        'run',
+        ...filter,
+        '--maxWorkers=2',
+        '--reporter=default',
+        '--reporter=json',
+        `--outputFile.json=${report('unit')}`,
+      ],
       env: long ? { TALLYSTONE_LONG: '1' } : {},
       count: countVitest,
     },

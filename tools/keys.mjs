@@ -18,7 +18,10 @@ export function ensureKeys(data) {
   const file = path.join(path.resolve(data), 'keys.json');
   if (!fs.existsSync(file)) {
     fs.mkdirSync(path.dirname(file), { recursive: true });
-    writePrivately(file, `${JSON.stringify(Object.fromEntries(NAMES.map((name) => [name, randomBytes(32).toString('base64url')])), null, 2)}\n`);
+    writePrivately(
+      file,
+      `${JSON.stringify(Object.fromEntries(NAMES.map((name) => [name, randomBytes(32).toString('base64url')])), null, 2)}\n`,
+    );
     return file;
   }
   let keys;
@@ -28,6 +31,9 @@ export function ensureKeys(data) {
     keys = {};
   }
   const damaged = NAMES.filter((name) => typeof keys[name] !== 'string' || Buffer.from(keys[name], 'base64url').length < 32);
-  if (damaged.length > 0) throw new SetupProblem(`The keys file ${file} is damaged (${damaged.join(', ')}). Bring it back from a backup: new keys could not read the stored raw files.`);
+  if (damaged.length > 0)
+    throw new SetupProblem(
+      `The keys file ${file} is damaged (${damaged.join(', ')}). Bring it back from a backup: new keys could not read the stored raw files.`,
+    );
   return file;
 }

@@ -23,4 +23,6 @@ export function startPostgres(options: StartOptions): Promise<PostgresAddresses 
 export function stopPostgres(options: { readonly data: string; readonly say?: (line: string) => void }): Promise<boolean>;
 
 /** Addresses of a data folder's database as last started, and whether a server answers there. */
-export function postgresStatus(options: { readonly data: string }): Promise<{ readonly running: boolean } & Partial<PostgresAddresses>>;
+export function postgresStatus(options: {
+  readonly data: string;
+}): Promise<{ readonly running: boolean } & Partial<PostgresAddresses>>;

@@ -50,12 +50,15 @@ function candidateFolders() {
   if (fs.existsSync(versions)) for (const name of fs.readdirSync(versions)) folders.push(path.join(versions, name, 'bin'));
   for (const root of ['/usr', '/opt/homebrew/opt', '/usr/local/opt']) {
     if (!fs.existsSync(root)) continue;
-    for (const name of fs.readdirSync(root)) if (/^(pgsql-|postgresql@)\d+$/.test(name)) folders.push(path.join(root, name, 'bin'));
+    for (const name of fs.readdirSync(root))
+      if (/^(pgsql-|postgresql@)\d+$/.test(name)) folders.push(path.join(root, name, 'bin'));
   }
   const asked = spawnSync('pg_config', ['--bindir'], { encoding: 'utf8' });
   if (asked.status === 0) folders.push(asked.stdout.trim());
   for (const folder of (process.env.PATH ?? '').split(path.delimiter)) if (folder) folders.push(folder);
-  return [...new Set(folders)].filter((folder) => ['postgres', 'initdb', 'pg_ctl', 'psql'].every((name) => fs.existsSync(path.join(folder, name))));
+  return [...new Set(folders)].filter((folder) =>
+    ['postgres', 'initdb', 'pg_ctl', 'psql'].every((name) => fs.existsSync(path.join(folder, name))),
+  );
 }
 
 /** Folder of the PostgreSQL programs: the version the cluster was made with, or the newest one when there is no cluster yet. */
@@ -129,7 +132,10 @@ function account() {
     .readFileSync('/etc/passwd', 'utf8')
     .split('\n')
     .find((entry) => entry.startsWith(`${SUPERUSER}:`));
-  if (!line) throw new SetupProblem('PostgreSQL does not run as root and there is no account named "postgres" to run it as. Create one, or start as another user.');
+  if (!line)
+    throw new SetupProblem(
+      'PostgreSQL does not run as root and there is no account named "postgres" to run it as. Create one, or start as another user.',
+    );
   const [, , uid, gid] = line.split(':');
   return { uid: Number(uid), gid: Number(gid) };
 }
@@ -185,7 +191,13 @@ function run(program, args, { input, env, ids, timeout = 120_000 } = {}) {
     const child = execFile(
       program,
       args,
-      { ...ids, cwd: '/', timeout, maxBuffer: 1 << 26, env: { PATH: process.env.PATH, LANG: 'C.UTF-8', LC_ALL: 'C.UTF-8', ...env } },
+      {
+        ...ids,
+        cwd: '/',
+        timeout,
+        maxBuffer: 1 << 26,
+        env: { PATH: process.env.PATH, LANG: 'C.UTF-8', LC_ALL: 'C.UTF-8', ...env },
+      },
       (error, stdout, stderr) => resolve({ ok: !error, stdout, stderr, reason: error ? (stderr || error.message).trim() : '' }),
     );
     child.stdin.on('error', () => {});
@@ -197,7 +209,12 @@ function run(program, args, { input, env, ids, timeout = 120_000 } = {}) {
 
 function places(data) {
   const folder = path.resolve(data);
-  return { folder, cluster: path.join(folder, 'postgres'), half: path.join(folder, 'postgres.half-made'), secrets: path.join(folder, 'database.json') };
+  return {
+    folder,
+    cluster: path.join(folder, 'postgres'),
+    half: path.join(folder, 'postgres.half-made'),
+    secrets: path.join(folder, 'database.json'),
+  };
 }
 
 /** Replaces a file whole: a reader, or a start after a crash, sees the old text or the new one and never a part. */
@@ -258,7 +275,9 @@ function processesIn(cluster) {
     .filter((name) => /^\d+$/.test(name))
     .filter((name) => {
       try {
-        return fs.readlinkSync(`/proc/${name}/cwd`) === cluster && /^postgres/.test(fs.readFileSync(`/proc/${name}/comm`, 'utf8'));
+        return (
+          fs.readlinkSync(`/proc/${name}/cwd`) === cluster && /^postgres/.test(fs.readFileSync(`/proc/${name}/comm`, 'utf8'))
+        );
       } catch {
         return false;
       }
@@ -314,7 +333,8 @@ async function clearRemains(cluster, say) {
     for (let tries = 0; tries < 20 && processesIn(real).length > 0; tries += 1) await sleep(100);
   }
   const after = claimed(cluster);
-  if (after && !processesIn(real).includes(after.pid) && !(await answers(after.port))) fs.rmSync(path.join(cluster, 'postmaster.pid'), { force: true });
+  if (after && !processesIn(real).includes(after.pid) && !(await answers(after.port)))
+    fs.rmSync(path.join(cluster, 'postmaster.pid'), { force: true });
 }
 
 // --- Making and starting ----------------------------------------------------------------------------------------------
@@ -360,7 +380,18 @@ async function makeCluster(bin, { cluster, half }, secrets, ids, test) {
   fs.writeFileSync(passwordFile, `${secrets.superuser}\n`, { mode: 0o600 });
   if (ids) fs.chownSync(passwordFile, ids.uid, ids.gid);
   try {
-    const args = ['-D', half, '-E', 'UTF8', '--locale=C.UTF-8', '-A', 'scram-sha-256', '-U', SUPERUSER, `--pwfile=${passwordFile}`];
+    const args = [
+      '-D',
+      half,
+      '-E',
+      'UTF8',
+      '--locale=C.UTF-8',
+      '-A',
+      'scram-sha-256',
+      '-U',
+      SUPERUSER,
+      `--pwfile=${passwordFile}`,
+    ];
     if (test) args.push('--no-sync');
     let made = await run(path.join(bin, 'initdb'), args, { ids });
     if (!made.ok && /locale/i.test(made.reason)) {
@@ -368,7 +399,11 @@ async function makeCluster(bin, { cluster, half }, secrets, ids, test) {
       fs.rmSync(half, { recursive: true, force: true });
       fs.mkdirSync(half, { mode: 0o700 });
       if (ids) fs.chownSync(half, ids.uid, ids.gid);
-      made = await run(path.join(bin, 'initdb'), args.map((arg) => (arg === '--locale=C.UTF-8' ? '--locale=C' : arg)), { ids });
+      made = await run(
+        path.join(bin, 'initdb'),
+        args.map((arg) => (arg === '--locale=C.UTF-8' ? '--locale=C' : arg)),
+        { ids },
+      );
     }
     if (!made.ok) throw new SetupProblem(`PostgreSQL could not create its data folder ${cluster}: ${made.reason}`);
   } finally {
@@ -384,12 +419,16 @@ function startServer(bin, cluster, port, ids) {
   if (fs.existsSync(log) && fs.statSync(log).size > 20 << 20) fs.truncateSync(log, 0);
   return new Promise((resolve) => {
     // Output must be ignored: the server inherits it and a pipe would never close.
-    const child = spawn(path.join(bin, 'pg_ctl'), ['start', '-s', '-w', '-t', '60', '-D', cluster, '-l', log, '-o', `-p ${port}`], {
-      ...ids,
-      cwd: '/',
-      stdio: 'ignore',
-      env: { PATH: process.env.PATH, LANG: 'C.UTF-8', LC_ALL: 'C.UTF-8' },
-    });
+    const child = spawn(
+      path.join(bin, 'pg_ctl'),
+      ['start', '-s', '-w', '-t', '60', '-D', cluster, '-l', log, '-o', `-p ${port}`],
+      {
+        ...ids,
+        cwd: '/',
+        stdio: 'ignore',
+        env: { PATH: process.env.PATH, LANG: 'C.UTF-8', LC_ALL: 'C.UTF-8' },
+      },
+    );
     child.once('error', () => resolve(false));
     child.once('exit', (code) => resolve(code === 0));
   });
@@ -419,9 +458,25 @@ async function ensureRoles(bin, secrets, test) {
     GRANT USAGE ON SCHEMA public TO ${APP_ROLE};
     GRANT CREATE, USAGE ON SCHEMA public TO ${OWNER_ROLE};`;
   const env = { PGPASSWORD: secrets.superuser, PGCONNECT_TIMEOUT: '10' };
-  const args = ['-h', HOST, '-p', String(secrets.port), '-U', SUPERUSER, '-d', 'postgres', '-X', '-q', '-v', 'ON_ERROR_STOP=1', '-f', '-'];
+  const args = [
+    '-h',
+    HOST,
+    '-p',
+    String(secrets.port),
+    '-U',
+    SUPERUSER,
+    '-d',
+    'postgres',
+    '-X',
+    '-q',
+    '-v',
+    'ON_ERROR_STOP=1',
+    '-f',
+    '-',
+  ];
   const done = await run(path.join(bin, 'psql'), args, { env, input: sql });
-  if (!done.ok) throw new SetupProblem(`PostgreSQL runs on port ${secrets.port}, but its roles could not be set up: ${done.reason}`);
+  if (!done.ok)
+    throw new SetupProblem(`PostgreSQL runs on port ${secrets.port}, but its roles could not be set up: ${done.reason}`);
 }
 
 /** Runs `work` while no other process starts or makes the same cluster; a lock whose holder is gone is taken over. */
@@ -474,10 +529,14 @@ async function startAlone(at, bin, { test, port, say }) {
   let secrets = readSecrets(at.secrets);
   const exists = fs.existsSync(path.join(at.cluster, 'PG_VERSION'));
   if (exists && !secrets) {
-    throw new SetupProblem(`${at.cluster} holds a database, but ${at.secrets} with its passwords is missing or unreadable. Bring the file back from a backup, or move the folder away to start afresh.`);
+    throw new SetupProblem(
+      `${at.cluster} holds a database, but ${at.secrets} with its passwords is missing or unreadable. Bring the file back from a backup, or move the folder away to start afresh.`,
+    );
   }
   if (exists && !ids && fs.statSync(at.cluster).uid !== process.getuid?.()) {
-    throw new SetupProblem(`The database in ${at.cluster} belongs to another account. Start as that account (or as root), or choose another data folder with TALLYSTONE_DATA.`);
+    throw new SetupProblem(
+      `The database in ${at.cluster} belongs to another account. Start as that account (or as root), or choose another data folder with TALLYSTONE_DATA.`,
+    );
   }
   if (!secrets) {
     const password = () => randomBytes(24).toString('hex');
@@ -500,7 +559,10 @@ async function startAlone(at, bin, { test, port, say }) {
     if (await startServer(bin, at.cluster, chosen, ids)) server = await running(at.cluster);
     else await sleep(500 * attempt);
   }
-  if (!server) throw new SetupProblem(`PostgreSQL did not start in ${at.cluster}. Its log ends with:\n${lastLines(path.join(at.cluster, 'server.log'))}`);
+  if (!server)
+    throw new SetupProblem(
+      `PostgreSQL did not start in ${at.cluster}. Its log ends with:\n${lastLines(path.join(at.cluster, 'server.log'))}`,
+    );
 
   if (server.port !== secrets.port) {
     secrets = { ...secrets, port: server.port };
@@ -515,7 +577,9 @@ export async function stopPostgres({ data, say = () => {} }) {
   const { cluster } = places(data);
   if (!fs.existsSync(path.join(cluster, 'PG_VERSION')) || !(await running(cluster))) return false;
   const bin = programs(cluster, say);
-  const stopped = await run(path.join(bin, 'pg_ctl'), ['stop', '-s', '-w', '-t', '60', '-m', 'fast', '-D', cluster], { ids: account() });
+  const stopped = await run(path.join(bin, 'pg_ctl'), ['stop', '-s', '-w', '-t', '60', '-m', 'fast', '-D', cluster], {
+    ids: account(),
+  });
   if (!stopped.ok) throw new SetupProblem(`PostgreSQL in ${cluster} did not stop: ${stopped.reason}`);
   return true;
 }

@@ -19,7 +19,16 @@ import { setTimeout as sleep } from 'node:timers/promises';
 import { ensureBuilt } from './build.mjs';
 import { ROOT, checkNode, ensurePackages, runProgram } from './install.mjs';
 import { ensureKeys } from './keys.mjs';
-import { SetupProblem, barredFolder, ensureProgramsFor, makeDataFolder, programsArePresent, startPostgres, stopPostgres, writePrivately } from './postgres.mjs';
+import {
+  SetupProblem,
+  barredFolder,
+  ensureProgramsFor,
+  makeDataFolder,
+  programsArePresent,
+  startPostgres,
+  stopPostgres,
+  writePrivately,
+} from './postgres.mjs';
 
 const HOST = process.env.HOST || '127.0.0.1';
 const DRAIN_MS = 35_000;
@@ -33,7 +42,8 @@ const began = Date.now();
 function askedPort() {
   const text = process.env.PORT || '4820';
   const port = Number(text);
-  if (!/^\d+$/.test(text) || port < 1 || port > 65_535) throw new SetupProblem(`PORT is "${text}"; it must be a number from 1 to 65535.`);
+  if (!/^\d+$/.test(text) || port < 1 || port > 65_535)
+    throw new SetupProblem(`PORT is "${text}"; it must be a number from 1 to 65535.`);
   return port;
 }
 
@@ -58,8 +68,10 @@ function portIsFree(port) {
 
 async function checkPort(port) {
   const free = await portIsFree(port);
-  if (free === 'EACCES') throw new SetupProblem(`Port ${port} may not be used by this account. Choose another one: PORT=4820 npm start`);
-  if (free !== true) throw new SetupProblem(`Port ${port} is in use by another program. Choose another one: PORT=${port + 1} npm start`);
+  if (free === 'EACCES')
+    throw new SetupProblem(`Port ${port} may not be used by this account. Choose another one: PORT=4820 npm start`);
+  if (free !== true)
+    throw new SetupProblem(`Port ${port} is in use by another program. Choose another one: PORT=${port + 1} npm start`);
 }
 
 /**
@@ -125,10 +137,13 @@ async function takeOver(file) {
     await waitUntil(() => !going() || earlier().stopping, 1_800);
     if (going() && !earlier().stopping) {
       const { pid, url } = earlier();
-      throw new SetupProblem(`Tallystone already runs from this data folder (process ${pid}${url ? `, ${url}` : ''}). Stop it first, or name another folder in TALLYSTONE_DATA.`);
+      throw new SetupProblem(
+        `Tallystone already runs from this data folder (process ${pid}${url ? `, ${url}` : ''}). Stop it first, or name another folder in TALLYSTONE_DATA.`,
+      );
     }
     if (going()) say('Waiting for the previous run to end');
-    if (!(await waitUntil(() => !going(), DRAIN_MS + 10_000))) throw new SetupProblem(`The previous run (process ${earlier().pid}) does not end. End it, then start again.`);
+    if (!(await waitUntil(() => !going(), DRAIN_MS + 10_000)))
+      throw new SetupProblem(`The previous run (process ${earlier().pid}) does not end. End it, then start again.`);
   }
   const left = () => (earlier().children ?? []).filter((pid) => runs(pid, path.join('server', 'main.js')));
   if (!(await waitUntil(() => left().length === 0, 3_000))) {
@@ -142,7 +157,15 @@ async function takeOver(file) {
 
 // --- Going down -------------------------------------------------------------------------------------------------------
 
-const state = { stopping: false, services: new Map(), programs: new Set(), data: undefined, runFile: undefined, ownPostgres: false, url: undefined };
+const state = {
+  stopping: false,
+  services: new Map(),
+  programs: new Set(),
+  data: undefined,
+  runFile: undefined,
+  ownPostgres: false,
+  url: undefined,
+};
 
 function noteRun() {
   if (!state.runFile) return;
@@ -166,7 +189,9 @@ async function stop(exitCode, reason) {
   try {
     noteRun();
     for (const child of state.programs) child.kill('SIGTERM');
-    const open = [...state.services.values()].map(({ child }) => child).filter((child) => child && child.exitCode === null && child.signalCode === null);
+    const open = [...state.services.values()]
+      .map(({ child }) => child)
+      .filter((child) => child && child.exitCode === null && child.signalCode === null);
     for (const child of open) child.kill('SIGTERM');
     const ended = () => open.every((child) => child.exitCode !== null || child.signalCode !== null);
     if (!(await waitUntil(ended, DRAIN_MS))) for (const child of open) child.kill('SIGKILL');
@@ -181,7 +206,10 @@ async function stop(exitCode, reason) {
 function parentOf(pid) {
   try {
     const text = fs.readFileSync(`/proc/${pid}/stat`, 'utf8');
-    return { name: text.slice(text.indexOf('(') + 1, text.lastIndexOf(')')), parent: Number(text.slice(text.lastIndexOf(')') + 2).split(' ')[1]) };
+    return {
+      name: text.slice(text.indexOf('(') + 1, text.lastIndexOf(')')),
+      parent: Number(text.slice(text.lastIndexOf(')') + 2).split(' ')[1]),
+    };
   } catch {
     return undefined;
   }
@@ -249,13 +277,19 @@ function startService(name, env) {
         clearTimeout(late);
         if (state.stopping) return;
         if (!ready) {
-          reject(new SetupProblem(said || `The ${name} service ended (${signal ?? `exit code ${code}`}) before it was ready. The end of ${file}:\n${lastLines(file, 15)}`));
+          reject(
+            new SetupProblem(
+              said ||
+                `The ${name} service ended (${signal ?? `exit code ${code}`}) before it was ready. The end of ${file}:\n${lastLines(file, 15)}`,
+            ),
+          );
           return;
         }
         const now = Date.now();
         service.ends = [...service.ends.filter((time) => now - time < 60_000), now];
         console.error(`The ${name} service ended (${signal ?? `exit code ${code}`}); starting it again. Its log: ${file}`);
-        if (service.ends.length > 5) void stop(1, `The ${name} service ended ${service.ends.length} times within a minute; giving up.`);
+        if (service.ends.length > 5)
+          void stop(1, `The ${name} service ended ${service.ends.length} times within a minute; giving up.`);
         else launch().catch((error) => stop(1, error.message));
       });
     });

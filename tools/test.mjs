@@ -43,7 +43,12 @@ function parse(args) {
 
 // --- What has to be there ---------------------------------------------------------------------------------------------
 
-const browserPaths = ['/usr/bin/chromium', '/usr/bin/chromium-browser', '/usr/bin/google-chrome', '/Applications/Google Chrome.app/Contents/MacOS/Google Chrome'];
+const browserPaths = [
+  '/usr/bin/chromium',
+  '/usr/bin/chromium-browser',
+  '/usr/bin/google-chrome',
+  '/Applications/Google Chrome.app/Contents/MacOS/Google Chrome',
+];
 const works = (program, ...args) => spawnSync(program, args, { stdio: 'ignore' }).status === 0;
 
 function missingPrograms() {
@@ -59,7 +64,10 @@ function ensurePrograms() {
   if (missing.length === 0) return;
   if (canInstall()) aptInstall(missing, say);
   const left = missingPrograms();
-  if (left.length > 0) throw new SetupProblem(`The end-to-end tests need ${left.join(' and ')}. On Debian or Ubuntu: sudo apt-get install ${left.join(' ')}`);
+  if (left.length > 0)
+    throw new SetupProblem(
+      `The end-to-end tests need ${left.join(' and ')}. On Debian or Ubuntu: sudo apt-get install ${left.join(' ')}`,
+    );
 }
 
 // --- A PostgreSQL for this run ----------------------------------------------------------------------------------------
@@ -174,6 +182,12 @@ async function perform(step, env) {
   return result;
 }
 
+/** A step that builds on one that failed is not tried, and is not counted as anything but a failure. */
+async function notRun(step, broken) {
+  say(`\n── ${step.title}: not run, because of ${broken.join(', ')}`);
+  return { passed: 0, failed: 1, skipped: 0, notes: [] };
+}
+
 /** Runs the steps in their order, side by side as far as the lanes reach; a step waits for those it comes after. */
 async function performAll(list, env) {
   const results = new Map();
@@ -184,11 +198,15 @@ async function performAll(list, env) {
     const advance = () => {
       if (waiting.length === 0 && free === LANES) return resolve();
       while (waiting.length > 0) {
-        const next = waiting.find(({ slots, after = [] }) => slots <= free && after.every((name) => !names.has(name) || results.has(name)));
+        const next = waiting.find(
+          ({ slots, after = [] }) => slots <= free && after.every((name) => !names.has(name) || results.has(name)),
+        );
         if (!next) return;
         waiting.splice(waiting.indexOf(next), 1);
         free -= next.slots;
-        perform(next, env).then((result) => {
+        const broken = (next.after ?? []).filter((name) => results.get(name)?.failed > 0);
+        const work = broken.length > 0 ? notRun(next, broken) : perform(next, env);
+        work.then((result) => {
           results.set(next.name, result);
           free += next.slots;
           advance();
@@ -206,7 +224,8 @@ async function main() {
   const work = fs.mkdtempSync(path.join(os.tmpdir(), 'tallystone-reports-'));
   const all = steps({ work, long, filter });
   const unknown = (only ?? []).filter((name) => !all.some((step) => step.name === name));
-  if (unknown.length > 0) throw new SetupProblem(`There is no step ${unknown.join(', ')}; the steps are ${all.map(({ name }) => name).join(', ')}.`);
+  if (unknown.length > 0)
+    throw new SetupProblem(`There is no step ${unknown.join(', ')}; the steps are ${all.map(({ name }) => name).join(', ')}.`);
   const chosen = only ? all.filter(({ name }) => only.includes(name)) : all;
 
   await ensurePackages({ say });

@@ -56,7 +56,8 @@ describe('import boundaries', () => {
       writeFileSync(join(folder, file), text);
     };
     for (const file of targets) write(file, 'export const value = 1;\n');
-    for (const [file, imported] of imports) write(file, `import * as imported from '${imported}';\nexport const used = imported;\n`);
+    for (const [file, imported] of imports)
+      write(file, `import * as imported from '${imported}';\nexport const used = imported;\n`);
     write('libs/numeric/one.ts', `import { b } from './other';\nexport const a = (): number => b;\n`);
     write('libs/numeric/other.ts', `import { a } from './one';\nexport const b = 1;\nexport const c = a;\n`);
     symlinkSync(join(root, 'node_modules'), join(folder, 'node_modules'));

@@ -1,15 +1,52 @@
-import { test as base } from '@playwright/test';
+import { test as base, expect } from '@playwright/test';
 import type { SignIn } from './installation';
 
+interface Fixtures {
+  /** How the demo's people sign in. */
+  readonly signIns: readonly SignIn[];
+  /** Signs a person of the demo in, by role. */
+  readonly signInAs: (role: string) => Promise<void>;
+  /** What a page must never do, whatever a test looks at: break the content security policy, or throw. */
+  readonly cleanPages: undefined;
+}
+
 /**
- * The browser test with the address of the running installation and the demo's people.
+ * The browser test with the address of the running installation and the demo's people. After each test it holds every page that was opened
+ * to having thrown nothing and violated no content security policy.
  *
  * @example
- * test('signs in', async ({ page, signIns }) => { await page.goto('/sign-in'); … });
+ * test('lists models', async ({ page, signInAs }) => { await signInAs('modeller'); await page.goto('/models'); … });
  */
-export const test = base.extend<{ signIns: readonly SignIn[] }>({
-  baseURL: async ({}, use) => use(process.env['TALLYSTONE_E2E_URL']), // eslint-disable-line no-empty-pattern -- Playwright reads the fixtures' names from this pattern
-  signIns: async ({}, use) => use(JSON.parse(process.env['TALLYSTONE_E2E_SIGN_INS'] ?? '[]') as SignIn[]), // eslint-disable-line no-empty-pattern -- as above
+export const test = base.extend<Fixtures>({
+  // eslint-disable-next-line no-empty-pattern -- Playwright reads the names of the fixtures needed from this pattern
+  baseURL: async ({}, use) => use(process.env['TALLYSTONE_E2E_URL']),
+  // eslint-disable-next-line no-empty-pattern -- as above
+  signIns: async ({}, use) => use(JSON.parse(process.env['TALLYSTONE_E2E_SIGN_INS'] ?? '[]') as SignIn[]),
+  signInAs: async ({ page, signIns }, use) => {
+    await use(async (role) => {
+      const person = signIns.find((signIn) => signIn.role === role);
+      if (!person) throw new Error(`The demo has no ${role}.`);
+      await page.goto('/sign-in');
+      await page.getByLabel('E-mail address').fill(person.email);
+      await page.getByLabel('Password', { exact: true }).fill(person.password);
+      await page.getByRole('button', { name: 'Sign in' }).click();
+      await expect(page).not.toHaveURL(/sign-in/);
+    });
+  },
+  cleanPages: [
+    async ({ context }, use) => {
+      const problems: string[] = [];
+      context.on('weberror', (webError) => problems.push(String(webError.error())));
+      // Angular keeps uncaught errors from the browser and hands them to the application's handler, which writes them to the console. An answer
+      // with an error status is no fault of the page: tests ask for those.
+      context.on('console', (message) => {
+        if (message.type() === 'error' && !message.text().startsWith('Failed to load resource')) problems.push(message.text());
+      });
+      await use(undefined);
+      expect(problems, 'errors and policy violations of the pages').toEqual([]);
+    },
+    { auto: true },
+  ],
 });
 
-export { expect } from '@playwright/test';
+export { expect };

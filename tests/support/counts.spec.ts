@@ -14,7 +14,10 @@ describe('what npm test counts', () => {
   });
 
   it('counts a file that could not run as a failure', () => {
-    expect(countVitest({ code: 1 }, { testResults: [file('failed'), file('passed', 'passed')] })).toMatchObject({ passed: 1, failed: 1 });
+    expect(countVitest({ code: 1 }, { testResults: [file('failed'), file('passed', 'passed')] })).toMatchObject({
+      passed: 1,
+      failed: 1,
+    });
   });
 
   it('counts an error outside of every test as a failure', () => {
@@ -24,7 +27,9 @@ describe('what npm test counts', () => {
   it('does not take nothing for success', () => {
     expect(countVitest({ code: 0 }, { testResults: [] })).toMatchObject({ passed: 0, failed: 1 });
     expect(countVitest({ code: 0 }, undefined)).toMatchObject({ failed: 1 });
-    expect(countPlaywright({ code: 0 }, { stats: { expected: 0, unexpected: 0, flaky: 0, skipped: 0 } })).toMatchObject({ failed: 1 });
+    expect(countPlaywright({ code: 0 }, { stats: { expected: 0, unexpected: 0, flaky: 0, skipped: 0 } })).toMatchObject({
+      failed: 1,
+    });
     expect(countPlaywright({ code: 0 }, undefined)).toMatchObject({ failed: 1 });
   });
 
@@ -34,7 +39,15 @@ describe('what npm test counts', () => {
   });
 
   it('counts a browser run that broke off before its tests as a failure', () => {
-    const report = { stats: { expected: 0, unexpected: 0, flaky: 0, skipped: 0 }, errors: [{ message: 'The server did not start\nat …' }] };
-    expect(countPlaywright({ code: 1 }, report)).toEqual({ passed: 0, failed: 1, skipped: 0, notes: ['The server did not start'] });
+    const report = {
+      stats: { expected: 0, unexpected: 0, flaky: 0, skipped: 0 },
+      errors: [{ message: 'The server did not start\nat …' }],
+    };
+    expect(countPlaywright({ code: 1 }, report)).toEqual({
+      passed: 0,
+      failed: 1,
+      skipped: 0,
+      notes: ['The server did not start'],
+    });
   });
 });

@@ -18,14 +18,21 @@ describe('createTestDatabase', () => {
     try {
       expect(one.name).not.toBe(other.name);
       for (const database of [one, other]) {
-        const applied = await asRole(database.appUrl, async (client) => (await client.query('SELECT name FROM migrations')).rowCount);
+        const applied = await asRole(
+          database.appUrl,
+          async (client) => (await client.query('SELECT name FROM migrations')).rowCount,
+        );
         expect(applied).toBeGreaterThan(0);
         const owned = await asRole(database.appUrl, async (client) => {
-          const { rows } = await client.query<{ owned: number }>('SELECT count(*)::int AS owned FROM pg_class WHERE pg_get_userbyid(relowner) = current_user');
+          const { rows } = await client.query<{ owned: number }>(
+            'SELECT count(*)::int AS owned FROM pg_class WHERE pg_get_userbyid(relowner) = current_user',
+          );
           return rows[0].owned;
         });
         expect(owned).toBe(0);
-        await expect(asRole(database.appUrl, (client) => client.query('CREATE TABLE mine (a int)'))).rejects.toThrow(/permission denied/);
+        await expect(asRole(database.appUrl, (client) => client.query('CREATE TABLE mine (a int)'))).rejects.toThrow(
+          /permission denied/,
+        );
       }
     } finally {
       await Promise.all([one.drop(), other.drop()]);

@@ -49,7 +49,9 @@ function freePort(): Promise<number> {
     server.once('error', reject);
     server.listen({ host: '127.0.0.1', port: 0 }, () => {
       const address = server.address();
-      server.close(() => (typeof address === 'object' && address ? resolve(address.port) : reject(new Error('no port was given'))));
+      server.close(() =>
+        typeof address === 'object' && address ? resolve(address.port) : reject(new Error('no port was given')),
+      );
     });
   });
 }
@@ -74,7 +76,9 @@ function launch(service: Service, environment: NodeJS.ProcessEnv, log: string): 
       else reject(new Error(`${service}: ${message.message}`));
     });
     child.once('error', reject);
-    child.once('exit', (code, signal) => reject(new Error(`${service} ended (${signal ?? code}) before it was ready:\n${readFileSync(log, 'utf8').slice(-4000)}`)));
+    child.once('exit', (code, signal) =>
+      reject(new Error(`${service} ended (${signal ?? code}) before it was ready:\n${readFileSync(log, 'utf8').slice(-4000)}`)),
+    );
   });
 }
 
@@ -128,10 +132,17 @@ export async function install({ demo, environment = {} }: InstallationOptions): 
     folder.remove();
   };
   try {
-    await run(process.execPath, [join(distribution, 'cli', 'migrate.js')], { cwd: root, env: { ...env, DATABASE_OWNER_URL: ownerUrl } });
+    await run(process.execPath, [join(distribution, 'cli', 'migrate.js')], {
+      cwd: root,
+      env: { ...env, DATABASE_OWNER_URL: ownerUrl },
+    });
     let signIns: SignIn[] = [];
     if (demo) {
-      const { stdout } = await run(process.execPath, [join(distribution, 'cli', 'demo.js')], { cwd: root, env, maxBuffer: 1 << 26 });
+      const { stdout } = await run(process.execPath, [join(distribution, 'cli', 'demo.js')], {
+        cwd: root,
+        env,
+        maxBuffer: 1 << 26,
+      });
       signIns = (JSON.parse(stdout.trim().split('\n').at(-1) ?? '') as { signIns: SignIn[] }).signIns;
     }
     const [web] = await Promise.all([start('web'), start('worker')]);
