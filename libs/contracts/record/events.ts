@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { binningEvents } from '../binnings/record-events';
+import { documentEvents } from '../documents/record-events';
 import { fitEvents } from '../fits/record-events';
 import { modelEvents } from '../models/record-events';
 import { outOfTimeEvents } from '../out-of-time/record-events';
@@ -15,7 +16,7 @@ import { recordEvents } from './record-events';
 /**
  * Every act the record knows. An entity adds its list here: nothing else is accepted by `appendRecord`.
  */
-export const RecordEvent = z.discriminatedUnion('action', [...sessionEvents, ...peopleEvents, ...runEvents, ...recordEvents, ...outOfTimeEvents, ...modelEvents, ...sampleEvents, ...binningEvents, ...fitEvents, ...scorecardEvents, ...versionEvents, ...validationEvents]);
+export const RecordEvent = z.discriminatedUnion('action', [...sessionEvents, ...peopleEvents, ...runEvents, ...recordEvents, ...outOfTimeEvents, ...modelEvents, ...sampleEvents, ...binningEvents, ...fitEvents, ...scorecardEvents, ...versionEvents, ...validationEvents, ...documentEvents]);
 export type RecordEvent = z.input<typeof RecordEvent>;
 
 export const recordActions: readonly string[] = RecordEvent.options.map((option) => option.shape.action.value);

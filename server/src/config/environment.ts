@@ -25,6 +25,8 @@ const Environment = z.object({
   TALLYSTONE_KEYS: z.string().min(1).optional(),
   TALLYSTONE_WEB: z.string().min(1).default('dist/web/browser'),
   TALLYSTONE_DEMO: switchValue,
+  /** Whose documents these are: printed on every one. */
+  TALLYSTONE_LENDER: z.string().trim().min(1).max(200).optional(),
   TALLYSTONE_THREADS: count(1, 64, 2),
   TALLYSTONE_THREAD_MEMORY_MB: count(256, 65536, 3072),
   TALLYSTONE_LONG_RUNS: count(1, 16, 1),
@@ -48,6 +50,7 @@ export interface Config {
   readonly dataFolder: string;
   readonly webFolder: string;
   readonly demo: boolean;
+  readonly lender: string;
   readonly keys: Keys;
   readonly threads: { readonly count: number; readonly memoryMb: number };
   readonly longRuns: number;
@@ -99,6 +102,7 @@ export function readConfig(environment: Readonly<Record<string, string | undefin
     dataFolder,
     webFolder: resolve(value.TALLYSTONE_WEB),
     demo: value.TALLYSTONE_DEMO,
+    lender: value.TALLYSTONE_LENDER ?? (value.TALLYSTONE_DEMO ? 'Saltmarsh Mutual' : 'Lender not named'),
     keys,
     threads: { count: value.TALLYSTONE_THREADS, memoryMb: value.TALLYSTONE_THREAD_MEMORY_MB },
     longRuns: value.TALLYSTONE_LONG_RUNS,

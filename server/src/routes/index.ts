@@ -1,4 +1,5 @@
 import { comparisonRoutes } from './comparison/index';
+import { documentRoutes } from './documents/index';
 import { fitRoutes } from './fits/index';
 import { healthRoutes } from './health/index';
 import { binningRoutes } from './binnings/index';
@@ -20,7 +21,7 @@ import type { Route } from './http/route';
 export function allRoutes(): Route[] {
   const routes: Route[] = [...sessionRoutes, ...setUpRoutes, ...invitationRoutes, ...peopleRoutes, ...recordRoutes, ...runRoutes];
   routes.push(...modelRoutes(), ...sampleRoutes());
-  routes.push(...fitRoutes, ...comparisonRoutes, ...scorecardRoutes, ...versionRoutes, ...validationRoutes);
+  routes.push(...fitRoutes, ...comparisonRoutes, ...scorecardRoutes, ...versionRoutes, ...validationRoutes, ...documentRoutes);
   routes.push(...outOfTimeRoutes, ...binningRoutes);
   routes.push(...healthRoutes(() => routes));
   return routes;

@@ -1,0 +1,310 @@
+import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
+import type { SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
+import type { Result } from '@tallystone/contracts/result/types';
+import type { Specification } from '@tallystone/contracts/specification/types';
+import type { VersionTextKey, VersionTexts } from '@tallystone/contracts/versions/schema';
+import type { DocumentInput } from '../../documents/input';
+import type { Context } from '../../context';
+import { rows } from '../../database/sql';
+import { VersionRow } from '../../models/version';
+import type { VersionFigures } from '../../threads/freeze-version';
+import { findModel } from '../models/find-model';
+import { readCover, findCovered } from '../out-of-time/cover';
+import { recordHead } from '../record/verify';
+import { actorOf } from '../people/actor-of';
+import type { ReplicationEvidence } from '../validation/replicate';
+import type { StabilityEvidence } from '../validation/stability';
+import { type FoundEvidence, readEvidence } from '../versions/evidence';
+import { type FoundVersion, findVersion } from '../versions/find-version';
+
+/** What the sample's evidence holds (version-evidence.ts). */
+interface SampleEvidence {
+  fileName: string;
+  bytes: number;
+  rows: number;
+  columns: number;
+  sha256: string;
+  receivedBy: string;
+  receivedAt: string;
+  definition: SampleDefinitionContent;
+  quality: { name: string; kind: string; profile: ColumnProfile }[];
+}
+interface ClassingEvidence {
+  edits: { column: string; edit: string; reason: { code: string; text: string } | null; by: string; at: string }[];
+  characteristics: { column: string; trend: string | null }[];
+  bins: VersionFigures['bins'];
+}
+interface FitEvidence {
+  choice: { rule: string; reason: string; by: string; at: string };
+}
+type PerformanceEvidence = Pick<VersionFigures, 'distributions' | 'bandCalibrations'>;
+
+/** Which section a text of the author stands in, and under what head. */
+const textPlaces: Record<VersionTextKey, { section: number; topic: string }> = {
+  recommendation: { section: 1, topic: 'Recommendation' },
+  exclusionsRationale: { section: 4, topic: 'Rationale' },
+  outcomeJustification: { section: 5, topic: 'Justification' },
+  sourcesSuitability: { section: 6, topic: 'Suitability of the sources' },
+  penaltyReason: { section: 9, topic: 'Why this penalty' },
+  businessSense: { section: 10, topic: 'Business sense of each characteristic' },
+  signExceptions: { section: 10, topic: 'Sign exceptions' },
+  performanceInterpretation: { section: 11, topic: 'Interpretation' },
+  limitations: { section: 11, topic: 'Limitations' },
+  monitoringPlan: { section: 1, topic: 'Monitoring plan' },
+  changeReasons: { section: 18, topic: 'Reasons for changes' },
+};
+
+const acts = {
+  freeze: 'frozen',
+  submit: 'submitted',
+  withdraw: 'withdrawn',
+  start: 'validation started',
+  conclude: 'concluded',
+  accept: 'documentation accepted',
+  return: 'documentation returned',
+} as const;
+
+/**
+ * Everything the document of a version is made of, from frozen evidence and the record: nothing is calculated here and nothing is typed in. What
+ * does not exist is null and prints as "not evidenced".
+ */
+export async function gatherDocument(context: Context, versionId: string, personId: string): Promise<DocumentInput> {
+  const { sequelize, config, pool } = context;
+  const [version, frozen] = await Promise.all([findVersion(sequelize, versionId), VersionRow.findByPk(versionId, { raw: true })]);
+  if (!version || !frozen) throw new Error(`There is no version ${versionId}`);
+  const [model, evidence, head, texts, history, edition, covered] = await Promise.all([
+    findModel(sequelize, version.modelId),
+    readEvidence(sequelize, versionId),
+    recordHead(pool),
+    textsOf(context, versionId),
+    historyOf(context, version.modelId),
+    rows<{ next: number }>(sequelize, 'SELECT coalesce(max(number), 0) + 1 AS next FROM documents WHERE version_id = $1', [versionId]),
+    findCovered(sequelize, version.definitionId),
+  ]);
+  if (!model || !covered) throw new Error(`Version ${versionId} has lost its model or definition`);
+  const cover = await readCover(sequelize, await actorOf(personId), covered);
+  const specification = JSON.parse(frozen.specification) as Specification;
+  const result = JSON.parse(frozen.result) as Result;
+  const one = <T>(kind: FoundEvidence['kind']): { content: T; number: string } | null => {
+    const entry = [...evidence].reverse().find((candidate) => candidate.kind === kind);
+    return entry ? { content: entry.content as T, number: `E-${entry.number}` } : null;
+  };
+  const sample = one<SampleEvidence>('sample');
+  const classing = one<ClassingEvidence>('classing');
+  const fit = one<FitEvidence>('fit');
+  const performance = one<PerformanceEvidence>('performance');
+  const stability = one<StabilityEvidence>('stability');
+  const concluded = [...version.acts].reverse().find(({ act }) => act === 'conclude');
+  const shown = (partition: string): boolean => partition !== 'outOfTime' || cover.state !== 'covered';
+
+  return {
+    format: 'tallystone-document-input',
+    formatVersion: 1,
+    lender: config.lender,
+    edition: edition[0].next,
+    demonstration: config.demo,
+    model: {
+      inventoryNumber: model.inventoryNumber,
+      name: model.name,
+      purpose: model.purpose,
+      product: model.product,
+      population: model.population,
+      jurisdiction: model.jurisdiction,
+      owner: model.owner,
+      materialityTier: model.materialityTier,
+      intendedUse: model.intendedUse,
+      prohibitedUse: model.prohibitedUse,
+    },
+    version: {
+      label: String(version.number),
+      state: version.state,
+      fingerprint: version.fingerprint,
+      codeVersion: version.codeVersion,
+      frozenBy: version.frozenBy,
+      frozenAt: version.frozenAt.toISOString(),
+    },
+    signatures: version.acts.map((entry) => ({
+      act: acts[entry.act],
+      name: entry.by,
+      role: entry.role,
+      at: entry.at,
+      statement: [entry.conclusion, entry.statement].filter(Boolean).join('. ') || null,
+      sequence: history.find((line) => line.entityId === version.id && Math.abs(Date.parse(line.at) - Date.parse(entry.at)) < 5000)?.sequence ?? null,
+    })),
+    conditions: (concluded?.conditions ?? []).map((text) => ({ text, kind: 'condition of the validator', owner: model.owner, due: null, discharged: null })),
+    texts,
+    columns: result.characteristics.map(({ column }) => ({ column, label: column, unit: null })),
+    evidence: evidence.map((entry) => ({ number: `E-${entry.number}`, title: entry.title, madeBy: entry.by, madeAt: entry.at, sha256: entry.sha256 })),
+    specification,
+    result,
+    resultEvidence: one('version')?.number ?? null,
+    resultSha256: frozen.resultSha256,
+    sourceFile: sample && {
+      evidence: sample.number,
+      fileName: sample.content.fileName,
+      bytes: sample.content.bytes,
+      rows: sample.content.rows,
+      columns: sample.content.columns,
+      sha256: sample.content.sha256,
+      broughtInBy: sample.content.receivedBy,
+      broughtInAt: sample.content.receivedAt,
+      replicable: true,
+      note: null,
+    },
+    waterfall: sample && waterfallOf(sample, specification, result),
+    windows: sample && windowsOf(sample, specification),
+    sensitivity: null,
+    quality: sample && {
+      evidence: sample.number,
+      rows: sample.content.rows,
+      columns: sample.content.quality.map(({ name, kind, profile }) => qualityOf(name, kind, profile, sample.content.definition)),
+    },
+    classing: classing && {
+      evidence: classing.number,
+      characteristics: classing.content.bins.map(({ column, holdOut, outOfTime }) => ({
+        column,
+        trend: classing.content.characteristics.find((entry) => entry.column === column)?.trend ?? null,
+        holdOut,
+        outOfTime: shown('outOfTime') ? outOfTime : null,
+        edits: classing.content.edits
+          .filter((edit) => edit.column === column)
+          .map(({ at, by, edit, reason }) => ({ at, by, edit, reason: reason && [reason.code, reason.text].filter(Boolean).join(': ') })),
+      })),
+    },
+    outOfTime: {
+      covered: cover.state === 'covered',
+      openings: cover.openings.map(({ at, by, reason }) => ({
+        at,
+        by,
+        reason,
+        beforeFreezing: Date.parse(at) < version.frozenAt.getTime(),
+        sequence: history.find((line) => line.act === 'out-of-time.opened' && line.reason === reason)?.sequence ?? null,
+      })),
+    },
+    penaltyChoice: fit && { by: fit.content.choice.by, at: fit.content.choice.at, rule: fit.content.choice.rule, reason: fit.content.choice.reason || null },
+    stability: stability && {
+      evidence: stability.number,
+      scheme: 'bootstrap, goods and bads apart',
+      resamples: stability.content.resamples,
+      seed: stability.content.seed,
+      level: stability.content.level,
+      characteristics: stability.content.rows.map((row) => ({
+        column: row.column,
+        selected: row.selected,
+        sameSign: row.sameSign,
+        coefficient: interval(row.lower, row.upper),
+        points: row.bins.map((bin) => interval(bin.lower, bin.upper)),
+      })),
+    },
+    scoreDistributions: (performance?.content.distributions ?? []).filter(({ partition }) => shown(partition)).map((entry) => ({ evidence: performance!.number, ...entry })),
+    bandCalibrations: (performance?.content.bandCalibrations ?? []).filter(({ partition }) => shown(partition)).map((entry) => ({ evidence: performance!.number, ...entry })),
+    comparisons: [],
+    replications: evidence.filter(({ kind }) => kind === 'replication').map(replicationOf),
+    validation: validationOf(version),
+    history: history.map(({ sequence, at, by, act, reason }) => ({ sequence, at, by, act, reason })),
+    recordHead: { sequence: head.sequence, hash: head.hash },
+  };
+}
+
+const interval = (lower: number | null, upper: number | null): { lower: number; upper: number } | null => (lower === null || upper === null ? null : { lower, upper });
+
+function waterfallOf(sample: { content: SampleEvidence; number: string }, specification: Specification, result: Result): DocumentInput['waterfall'] {
+  const steps = result.counts.excluded.map(({ reason, rows: taken, bads }) => ({ reason, rows: taken, bads: bads as number | null }));
+  if (specification.declined) steps.push({ reason: 'Declined applications, outcome not known', rows: result.counts.declined, bads: null });
+  return { evidence: sample.number, sourceRows: sample.content.rows, steps };
+}
+
+/** Dates that the partitions span, as far as the specification states them and the column of dates tells. */
+function windowsOf(sample: { content: SampleEvidence; number: string }, { partition }: Specification): DocumentInput['windows'] {
+  if (!('seed' in partition) || partition.outOfTime === null) return null;
+  const { column, from, to } = partition.outOfTime;
+  const date = sample.content.quality.find(({ name }) => name === column)?.profile.date;
+  if (!date) return null;
+  const before = from === null ? null : { from: date.first, to: new Date(Date.parse(from) - 86_400_000).toISOString().slice(0, 10) };
+  return {
+    evidence: sample.number,
+    performanceMonths: null,
+    development: before,
+    holdOut: before,
+    outOfTime: { from: from ?? date.first, to: to ?? date.last },
+  };
+}
+
+function qualityOf(name: string, kind: string, profile: ColumnProfile, definition: SampleDefinitionContent): NonNullable<DocumentInput['quality']>['columns'][number] {
+  const defined = definition.columns.find(({ column }) => column === name);
+  const [most] = profile.hashed ? [] : profile.mostFrequent;
+  const rowsOf = (value: string | number): number => profile.mostFrequent.find((entry) => entry.value === String(value))?.count ?? 0;
+  return {
+    column: name,
+    type: kind,
+    role: defined?.role ?? 'not used',
+    protected: defined?.protected ?? false,
+    distinct: profile.distinct,
+    missing: profile.missing,
+    special: (defined?.special ?? []).flatMap(({ label, values }) => values.map((value) => ({ code: String(value), meaning: label, rows: rowsOf(value) }))),
+    smallest: profile.numeric ? String(profile.numeric.smallest) : (profile.date?.first ?? null),
+    largest: profile.numeric ? String(profile.numeric.largest) : (profile.date?.last ?? null),
+    mostFrequent: most?.value ?? null,
+    mostFrequentRows: most?.count ?? 0,
+    flags: profile.flags.map(({ finding }) => finding),
+  };
+}
+
+function replicationOf(entry: FoundEvidence): DocumentInput['replications'][number] {
+  const content = entry.content as ReplicationEvidence;
+  return {
+    evidence: `E-${entry.number}`,
+    method: content.method === 'independent' ? 'independent method' : 'same code, new process',
+    solver: `${content.solver.name} ${content.solver.version}`,
+    by: entry.by,
+    at: entry.at,
+    matches: content.matches,
+    numbersCompared: content.compared,
+    numbersDiffering: content.differing,
+    largestCoefficientDifference: content.largestCoefficientDifference,
+    largestPointsDifference: content.largestPointsDifference,
+    integerScoresEqual: content.scoresEqual,
+    specificationSha256: content.specificationSha256,
+    dataSha256: content.dataSha256,
+    resultSha256: content.resultSha256,
+    intercept: content.intercept,
+    coefficients: [...content.coefficients],
+  };
+}
+
+function validationOf(version: FoundVersion): DocumentInput['validation'] {
+  const started = [...version.acts].reverse().find(({ act }) => act === 'start');
+  const concluded = [...version.acts].reverse().find(({ act }) => act === 'conclude');
+  const by = concluded ?? started;
+  if (!by || version.state === 'In development' || version.state === 'Submitted') return null;
+  return {
+    validator: by.by,
+    scope: started?.statement || null,
+    opinion: concluded?.statement ?? null,
+    conclusion: concluded?.conclusion ?? null,
+    concludedAt: concluded?.at ?? null,
+    findings: [],
+  };
+}
+
+async function textsOf({ sequelize }: Context, versionId: string): Promise<DocumentInput['texts']> {
+  const [row] = await rows<{ texts: VersionTexts; by: string; at: Date }>(
+    sequelize,
+    'SELECT t.texts, p.name AS by, t.changed_at AS at FROM version_texts t JOIN people p ON p.id = t.changed_by WHERE t.version_id = $1',
+    [versionId],
+  );
+  return (Object.entries(row?.texts ?? {}) as [VersionTextKey, string][])
+    .filter(([, text]) => text.trim() !== '')
+    .map(([key, text]) => ({ ...textPlaces[key], text, author: row.by, writtenAt: row.at.toISOString() }));
+}
+
+type HistoryLine = NonNullable<DocumentInput['history']>[number] & { entityId: string | null };
+
+async function historyOf({ sequelize }: Context, modelId: string): Promise<HistoryLine[]> {
+  const all = await rows<Omit<HistoryLine, 'at' | 'sequence'> & { at: Date; sequence: string }>(
+    sequelize,
+    `SELECT sequence, at, actor_name AS by, action AS act, reason, entity_id AS "entityId" FROM record WHERE model_id = $1 ORDER BY sequence`,
+    [modelId],
+  );
+  return all.map((line) => ({ ...line, sequence: Number(line.sequence), at: line.at.toISOString(), reason: line.reason || null }));
+}
