@@ -36,12 +36,7 @@ export function partitionPath(partition: Partition, r: number): string {
     <svg width="18" height="14" viewBox="-9 -7 18 14" aria-hidden="true" focusable="false">
       <path [attr.d]="path()" class="ts-mark" [class]="'ts-mark-' + partition()" />
     </svg>
-    <span
-      >{{ name() }}
-      @if (covered()) {
-        <span class="ts-caption">, covered</span>
-      }
-    </span>
+    <span>{{ words() }}</span>
   `,
   styles: `
     :host {
@@ -56,5 +51,5 @@ export class PartitionMark {
   readonly partition = input.required<Partition>();
   readonly covered = input(false);
   protected readonly path = computed(() => partitionPath(this.partition(), 4.2));
-  protected readonly name = computed(() => partitionName(this.partition()));
+  protected readonly words = computed(() => partitionName(this.partition()) + (this.covered() ? ', covered' : ''));
 }

@@ -101,9 +101,40 @@ export function svgText(svgs: readonly SVGSVGElement[], title: string, finding: 
   return new XMLSerializer().serializeToString(doc);
 }
 
-/** The drawing as a PNG of twice its size, sharp on paper. */
+const dataUrl = (blob: Blob): Promise<string> =>
+  new Promise((resolve, reject) => {
+    const reader = new FileReader();
+    reader.onload = () => resolve(reader.result as string);
+    reader.onerror = () => reject(reader.error ?? new Error('the font could not be read'));
+    reader.readAsDataURL(blob);
+  });
+
+/**
+ * The page's own typeface as @font-face rules that carry the font: a picture made from a drawing may fetch nothing. Latin letters and
+ * digits are enough for charts.
+ */
+async function typeface(): Promise<string> {
+  const rules = [...document.styleSheets]
+    .flatMap((sheet) => [...sheet.cssRules])
+    .filter((rule) => rule instanceof CSSFontFaceRule)
+    .filter((rule) => rule.style.getPropertyValue('unicode-range').replaceAll(' ', '').toUpperCase().startsWith('U+0-FF'));
+  const written = rules.map(async (rule) => {
+    const [, url] = /url\("?([^")]+\.woff2)"?\)/.exec(rule.style.getPropertyValue('src')) ?? [];
+    if (url === undefined) return '';
+    const font = await fetch(new URL(url, rule.parentStyleSheet?.href ?? document.baseURI));
+    const { style } = rule;
+    const face = `font-family:${style.getPropertyValue('font-family')};font-weight:${style.getPropertyValue('font-weight')}`;
+    return `@font-face{${face};src:url(${await dataUrl(await font.blob())}) format("woff2")}`;
+  });
+  return (await Promise.all(written)).join('');
+}
+
+/** The drawing as a PNG of twice its size, sharp on paper, in the page's typeface. */
 export async function pngOf(svg: string, scale = 2): Promise<Blob> {
-  const url = URL.createObjectURL(new Blob([svg], { type: 'image/svg+xml' }));
+  // A picture in the browser's own typeface is better than none.
+  const faces = await typeface().catch(() => '');
+  const drawing = svg.replace('</title>', `</title><style>${faces}</style>`);
+  const url = URL.createObjectURL(new Blob([drawing], { type: 'image/svg+xml' }));
   try {
     const image = new Image();
     image.src = url;

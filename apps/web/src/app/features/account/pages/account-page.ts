@@ -1,4 +1,4 @@
-import { ChangeDetectionStrategy, Component, computed, inject, signal } from '@angular/core';
+import { ChangeDetectionStrategy, Component, computed, ElementRef, inject, signal } from '@angular/core';
 import { type FormGroupDirective, NonNullableFormBuilder, ReactiveFormsModule, Validators } from '@angular/forms';
 import { MatButtonModule } from '@angular/material/button';
 import { MatButtonToggleModule } from '@angular/material/button-toggle';
@@ -14,6 +14,7 @@ import { MomentPipe } from '../../../ui/number-pipes';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { OwnAccount, type OwnSession, ownSessions } from '../data/own-account';
+import { showInvalid } from '../../../ui/show-invalid';
 
 /** One's own account: who one is, where one is signed in, the password, light or dark. Roles are given by an admin, never by oneself. */
 @Component({
@@ -62,6 +63,7 @@ import { OwnAccount, type OwnSession, ownSessions } from '../data/own-account';
   `,
 })
 export class AccountPage {
+  private readonly element = inject<ElementRef<HTMLElement>>(ElementRef).nativeElement;
   private readonly account = inject(OwnAccount);
   protected readonly session = inject(Session);
   protected readonly theme = inject(Theme);
@@ -88,7 +90,7 @@ export class AccountPage {
 
   protected change(directive: FormGroupDirective): void {
     if (this.form.invalid) {
-      this.form.markAllAsTouched();
+      showInvalid(this.form, this.element);
       return;
     }
     const { current, next } = this.form.getRawValue();

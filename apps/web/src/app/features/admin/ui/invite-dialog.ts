@@ -1,4 +1,4 @@
-import { ChangeDetectionStrategy, Component, inject, signal } from '@angular/core';
+import { ChangeDetectionStrategy, Component, ElementRef, inject, signal } from '@angular/core';
 import { NonNullableFormBuilder, ReactiveFormsModule, Validators } from '@angular/forms';
 import { MatButtonModule } from '@angular/material/button';
 import { MAT_DIALOG_DATA, MatDialogModule, MatDialogRef } from '@angular/material/dialog';
@@ -8,6 +8,7 @@ import type { Role } from '@tallystone/contracts/people/schema';
 import { Task } from '../../../core/task';
 import { ProblemList } from '../../../ui/problem-list';
 import { RoleChoice } from './role-choice';
+import { showInvalid } from '../../../ui/show-invalid';
 
 export interface InviteQuestion {
   readonly send: (body: { name: string; email: string; roles: readonly Role[] }) => Promise<unknown>;
@@ -50,6 +51,7 @@ export interface InviteQuestion {
   `,
 })
 export class InviteDialog {
+  private readonly element = inject<ElementRef<HTMLElement>>(ElementRef).nativeElement;
   private readonly question = inject<InviteQuestion>(MAT_DIALOG_DATA);
   private readonly reference = inject<MatDialogRef<InviteDialog, boolean>>(MatDialogRef);
   protected readonly roles = signal<readonly Role[]>([]);
@@ -61,7 +63,7 @@ export class InviteDialog {
 
   protected submit(): void {
     if (this.form.invalid) {
-      this.form.markAllAsTouched();
+      showInvalid(this.form, this.element);
       return;
     }
     void this.task.run(async () => {

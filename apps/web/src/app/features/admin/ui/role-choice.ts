@@ -13,7 +13,9 @@ import { allRoles, roleWords } from './roles';
       <legend>Roles</legend>
       @for (role of roles; track role) {
         <mat-checkbox [checked]="chosen().includes(role)" (change)="toggle(role, $event.checked)">
-          <b>{{ words[role].name }}</b> <span class="ts-second">{{ words[role].does }}</span>
+          <span
+            ><b>{{ words[role].name }}</b> <span class="ts-second">{{ words[role].does }}</span></span
+          >
         </mat-checkbox>
       }
     </fieldset>

@@ -1,4 +1,4 @@
-import { ChangeDetectionStrategy, Component, computed, inject, signal } from '@angular/core';
+import { ChangeDetectionStrategy, Component, computed, ElementRef, inject, signal } from '@angular/core';
 import { takeUntilDestroyed } from '@angular/core/rxjs-interop';
 import { ReactiveFormsModule } from '@angular/forms';
 import { MatButtonModule } from '@angular/material/button';
@@ -15,6 +15,7 @@ import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { type ModelFields, Models } from '../data/inventory';
 import { ModelFormFields, modelForm } from '../ui/model-form';
+import { showInvalid } from '../../../ui/show-invalid';
 
 export const fieldNames: Readonly<Record<keyof ModelFields, string>> = {
   name: 'Name',
@@ -88,6 +89,7 @@ interface Clash {
   `,
 })
 export class AboutPage implements HoldsWork {
+  private readonly element = inject<ElementRef<HTMLElement>>(ElementRef).nativeElement;
   private readonly models = inject(Models);
   private readonly current = inject(CurrentModel);
   private readonly ask = inject(Ask);
@@ -137,7 +139,7 @@ export class AboutPage implements HoldsWork {
 
   protected save(): void {
     if (this.form.invalid) {
-      this.form.markAllAsTouched();
+      showInvalid(this.form, this.element);
       return;
     }
     const { base } = this;

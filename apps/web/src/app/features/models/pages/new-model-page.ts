@@ -1,4 +1,4 @@
-import { ChangeDetectionStrategy, Component, inject, signal } from '@angular/core';
+import { ChangeDetectionStrategy, Component, ElementRef, inject, signal } from '@angular/core';
 import { ReactiveFormsModule } from '@angular/forms';
 import { MatButtonModule } from '@angular/material/button';
 import { Router, RouterLink } from '@angular/router';
@@ -9,6 +9,7 @@ import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { type ModelFields, Models } from '../data/inventory';
 import { ModelFormFields, modelForm } from '../ui/model-form';
+import { showInvalid } from '../../../ui/show-invalid';
 
 /** Enters a model in the inventory; whoever enters it is its first member. */
 @Component({
@@ -31,6 +32,7 @@ import { ModelFormFields, modelForm } from '../ui/model-form';
   `,
 })
 export class NewModelPage implements HoldsWork {
+  private readonly element = inject<ElementRef<HTMLElement>>(ElementRef).nativeElement;
   private readonly models = inject(Models);
   private readonly router = inject(Router);
 
@@ -45,7 +47,7 @@ export class NewModelPage implements HoldsWork {
 
   protected submit(): void {
     if (this.form.invalid) {
-      this.form.markAllAsTouched();
+      showInvalid(this.form, this.element);
       return;
     }
     void this.task.run(async () => {

@@ -1,4 +1,4 @@
-import { ChangeDetectionStrategy, Component, type OnInit, inject, input, signal } from '@angular/core';
+import { ChangeDetectionStrategy, Component, ElementRef, inject, input, type OnInit, signal } from '@angular/core';
 import { NonNullableFormBuilder, ReactiveFormsModule, Validators } from '@angular/forms';
 import { MatButtonModule } from '@angular/material/button';
 import { MatFormFieldModule } from '@angular/material/form-field';
@@ -11,6 +11,7 @@ import { DayPipe } from '../../../ui/number-pipes';
 import { ProblemList } from '../../../ui/problem-list';
 import { Entry } from '../data/entry';
 import { Doorway } from '../ui/doorway';
+import { showInvalid } from '../../../ui/show-invalid';
 
 /** An invited person sets a password; the link they came by is good once. */
 @Component({
@@ -56,6 +57,7 @@ import { Doorway } from '../ui/doorway';
   `,
 })
 export class InvitationPage implements OnInit {
+  private readonly element = inject<ElementRef<HTMLElement>>(ElementRef).nativeElement;
   private readonly entry = inject(Entry);
   private readonly session = inject(Session);
   private readonly router = inject(Router);
@@ -82,7 +84,7 @@ export class InvitationPage implements OnInit {
 
   protected submit(): void {
     if (this.form.invalid) {
-      this.form.markAllAsTouched();
+      showInvalid(this.form, this.element);
       return;
     }
     void this.task.run(async () => {

@@ -1,4 +1,4 @@
-import { ChangeDetectionStrategy, Component, inject, signal } from '@angular/core';
+import { ChangeDetectionStrategy, Component, ElementRef, inject, signal } from '@angular/core';
 import { NonNullableFormBuilder, ReactiveFormsModule, Validators } from '@angular/forms';
 import { MatButtonModule } from '@angular/material/button';
 import { MatFormFieldModule } from '@angular/material/form-field';
@@ -10,6 +10,7 @@ import { NewPassword, newPasswordControl } from '../../../ui/new-password';
 import { ProblemList } from '../../../ui/problem-list';
 import { Entry } from '../data/entry';
 import { Doorway } from '../ui/doorway';
+import { showInvalid } from '../../../ui/show-invalid';
 
 /** Makes the first admin, once, with the token that the server wrote at its first start. There are no default accounts. */
 @Component({
@@ -69,6 +70,7 @@ import { Doorway } from '../ui/doorway';
   `,
 })
 export class SetUpPage {
+  private readonly element = inject<ElementRef<HTMLElement>>(ElementRef).nativeElement;
   private readonly entry = inject(Entry);
   private readonly session = inject(Session);
   private readonly router = inject(Router);
@@ -91,7 +93,7 @@ export class SetUpPage {
 
   protected submit(): void {
     if (this.form.invalid) {
-      this.form.markAllAsTouched();
+      showInvalid(this.form, this.element);
       return;
     }
     const value = this.form.getRawValue();

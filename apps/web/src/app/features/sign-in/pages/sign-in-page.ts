@@ -1,4 +1,4 @@
-import { ChangeDetectionStrategy, Component, booleanAttribute, inject, input, signal } from '@angular/core';
+import { booleanAttribute, ChangeDetectionStrategy, Component, ElementRef, inject, input, signal } from '@angular/core';
 import { NonNullableFormBuilder, ReactiveFormsModule, Validators } from '@angular/forms';
 import { MatButtonModule } from '@angular/material/button';
 import { MatFormFieldModule } from '@angular/material/form-field';
@@ -9,6 +9,7 @@ import { Task } from '../../../core/task';
 import { ProblemList } from '../../../ui/problem-list';
 import { Entry } from '../data/entry';
 import { Doorway } from '../ui/doorway';
+import { showInvalid } from '../../../ui/show-invalid';
 
 /** Sign-in. Comes back to the page in `next`, which is an address of this application only. */
 @Component({
@@ -48,6 +49,7 @@ import { Doorway } from '../ui/doorway';
   `,
 })
 export class SignInPage {
+  private readonly element = inject<ElementRef<HTMLElement>>(ElementRef).nativeElement;
   private readonly router = inject(Router);
   private readonly entry = inject(Entry);
   protected readonly session = inject(Session);
@@ -70,7 +72,7 @@ export class SignInPage {
 
   protected submit(): void {
     if (this.form.invalid) {
-      this.form.markAllAsTouched();
+      showInvalid(this.form, this.element);
       return;
     }
     const { email, password } = this.form.getRawValue();

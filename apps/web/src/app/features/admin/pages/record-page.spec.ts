@@ -1,0 +1,88 @@
+import { provideHttpClient } from '@angular/common/http';
+import { HttpTestingController, provideHttpClientTesting } from '@angular/common/http/testing';
+import { TestBed } from '@angular/core/testing';
+import { Router, provideRouter, withComponentInputBinding } from '@angular/router';
+import { RouterTestingHarness } from '@angular/router/testing';
+import type { RecordEntry } from '../data/record';
+import { RecordPage } from './record-page';
+
+const entry = (sequence: number, change: Partial<RecordEntry> = {}): RecordEntry => ({
+  sequence,
+  at: '2026-11-03T13:00:00Z',
+  actorId: 'p1',
+  actorName: 'Admin',
+  actorRoles: ['admin'],
+  action: 'person.roles-changed',
+  entity: 'person',
+  entityId: 'p2',
+  modelId: null,
+  before: { roles: ['modeller'] },
+  after: { roles: ['modeller', 'validator'] },
+  detail: null,
+  reason: 'Covers in November',
+  withheld: false,
+  hash: 'ab'.repeat(32),
+  ...change,
+});
+
+describe('RecordPage', () => {
+  let server: HttpTestingController;
+  let harness: RouterTestingHarness;
+
+  const page = (): HTMLElement => harness.routeNativeElement as HTMLElement;
+
+  async function settled(): Promise<void> {
+    await new Promise((resolve) => setTimeout(resolve));
+    await harness.fixture.whenStable();
+  }
+
+  async function answer(entries: RecordEntry[], next: number | null): Promise<URLSearchParams> {
+    const request = server.expectOne((asked) => asked.url === '/api/record');
+    request.flush({ entries, next });
+    await settled();
+    return new URLSearchParams(request.request.params.toString());
+  }
+
+  beforeEach(async () => {
+    TestBed.configureTestingModule({
+      providers: [
+        provideHttpClient(),
+        provideHttpClientTesting(),
+        provideRouter([{ path: 'record', component: RecordPage }], withComponentInputBinding()),
+      ],
+    });
+    server = TestBed.inject(HttpTestingController);
+    harness = await RouterTestingHarness.create();
+    void harness.navigateByUrl('/record?entity=person&from=2026-11-01');
+    await new Promise((resolve) => setTimeout(resolve));
+    harness.fixture.detectChanges();
+    server.expectOne('/api/record/head').flush({ sequence: 1240, hash: 'cd'.repeat(32) });
+  });
+
+  it('reads its filter from the address and shows before and after', async () => {
+    const asked = await answer([entry(12), entry(11)], 11);
+    expect(asked.get('entity')).toBe('person');
+    expect(asked.get('from')).toBe(new Date('2026-11-01T00:00:00').toISOString());
+    expect(asked.has('before')).toBe(false);
+    expect(page().textContent).toContain('2 entries shown, 11 to 12 of 1\u202F240.');
+    const cells = [...page().querySelectorAll('details tbody tr:first-child > *')].slice(0, 3).map((cell) => cell.textContent);
+    expect(cells).toEqual(['roles', 'modeller', 'modeller, validator']);
+    expect(page().textContent).toContain('cd'.repeat(32));
+  });
+
+  it('goes to older entries by key, and starts again when the filter changes', async () => {
+    await answer([entry(12), entry(11)], 11);
+    [...page().querySelectorAll('button')].find((button) => button.textContent?.includes('Older entries'))?.click();
+    await settled();
+    const older = await answer([entry(10, { withheld: true, before: null, after: null })], null);
+    expect(older.get('before')).toBe('11');
+    expect(page().textContent).toContain('is not open to you');
+    [...page().querySelectorAll('button')].find((button) => button.textContent === 'Admin')?.click();
+    await settled();
+    const narrowed = await answer([], null);
+    expect(narrowed.get('actorId')).toBe('p1');
+    expect(narrowed.has('before')).toBe(false);
+    expect(TestBed.inject(Router).url).toBe('/record?entity=person&from=2026-11-01&actorId=p1');
+    expect(page().textContent).toContain('No entry fits this filter.');
+  });
+});
