@@ -55,6 +55,7 @@ function handlerOf(context: Context, route: Route): RequestHandler {
       const found = { ...inside, subject } as never;
       if (recipe.authorise) demand(await recipe.authorise(found));
       if (refusal) throw refusal;
+      if (recipe.permit) demand(await recipe.permit(found));
       const answer = await recipe.act(found);
       // Remembered so that `afterwards` sees the same subject.
       settled = found;

@@ -34,8 +34,8 @@ export interface Call<E extends Endpoint, A extends Access, Subject = undefined>
 }
 
 /**
- * The recipe of one route, in the order in which its steps run: limit, authenticate, admit, validate, transaction, find, authorise, act,
- * present. What is not needed is left out. An input that is not valid is refused after `authorise`: whoever may not see a thing learns
+ * The recipe of one route, in the order in which its steps run: limit, authenticate, admit, validate, transaction, find, authorise, permit,
+ * act, present. What is not needed is left out. An input that is not valid is refused after `authorise`: whoever may not see a thing learns
  * nothing from how it is refused, which is why neither `find` nor `authorise` is given query or body.
  */
 export interface Recipe<E extends Endpoint, A extends Access, Subject> {
@@ -45,6 +45,8 @@ export interface Recipe<E extends Endpoint, A extends Access, Subject> {
   /** Loads what the request is about. Null is answered with 404, the same as what one may not see. */
   readonly find?: (call: Omit<Call<E, A>, 'query' | 'body'>) => Promise<Subject | null> | Subject | null;
   readonly authorise?: (call: Omit<Call<E, A, Subject>, 'query' | 'body'>) => Decision | Promise<Decision>;
+  /** Decides what hangs on the input itself (which act is asked for, say): runs once the input is known to be valid. */
+  readonly permit?: (call: Call<E, A, Subject>) => Decision | Promise<Decision>;
   /** Does the work and answers with what the endpoint promises. */
   readonly act: (call: Call<E, A, Subject>) => Promise<AnswerOf<E>> | AnswerOf<E>;
   /** Runs after the transaction has been committed: for what cannot be rolled back. */

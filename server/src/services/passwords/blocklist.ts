@@ -34,7 +34,7 @@ export function refusalOf(password: string, context: readonly string[]): string 
   if (common.has(letters)) return 'It is among the passwords that are tried first.';
   if (/^(.{1,5}?)\1{2,}.{0,4}$/su.test(plain)) return 'It repeats a few characters over and over.';
   if (new Set(plain).size < 5) return 'It uses too few different characters.';
-  const { left, found } = strip(unleet(letters), context);
+  const { left, found } = strip(unleet(plain).replace(/[^\p{L}\p{N}]/gu, ''), context);
   if (left.length < leastOwn) {
     return found.length > 0 ? `It is made of what is guessed first (${found.join(', ')}).` : 'It is a run of neighbouring keys or digits.';
   }
@@ -42,7 +42,7 @@ export function refusalOf(password: string, context: readonly string[]): string 
 }
 
 /** Digits and signs that people put in place of letters. */
-const unleet = (text: string): string => text.replace(/[013457]/g, (digit) => ({ '0': 'o', '1': 'i', '3': 'e', '4': 'a', '5': 's', '7': 't' })[digit] ?? digit);
+const unleet = (text: string): string => text.replace(/[013457@$]/g, (sign) => ({ '0': 'o', '1': 'i', '3': 'e', '4': 'a', '5': 's', '7': 't', '@': 'a', $: 's' })[sign] ?? sign);
 
 function strip(text: string, context: readonly string[]): { left: string; found: string[] } {
   const own = context.flatMap((part) => part.toLowerCase().split(/[^\p{L}\p{N}]+/u)).filter((part) => part.length >= 4);
