@@ -1,0 +1,268 @@
+import { Injectable, computed, inject, signal } from '@angular/core';
+import type { EditReason } from '@tallystone/contracts/binnings/edits';
+import {
+  addCut,
+  benchWarnings,
+  moveCut,
+  readBench,
+  type BenchReading,
+  type BenchWarning,
+  type Bins,
+  type EditOf,
+  type FineClasses,
+  type NumericBins,
+} from '@tallystone/numeric/bench';
+import { type Tagged, isStale } from '../../../core/http/etag';
+import {
+  act,
+  begin,
+  currentBins,
+  explain,
+  keepMine,
+  redo,
+  reset,
+  toSave,
+  undo,
+  unexplained,
+  type History,
+} from '../bench/history';
+import { Binnings, type CharacteristicDetail } from './binnings';
+
+/** Time without a further edit after which the bench is saved. */
+const saveAfter = 1200; // ms
+const retryAfter = 5000; // ms
+
+/** waiting: an edit is not sent yet; stale: somebody else saved first and a person must say which bins stay. */
+export type SaveState = 'saved' | 'waiting' | 'saving' | 'stale' | 'failed';
+
+/**
+ * The bench of one characteristic: its bins under edit, everything recalculated at once from the fine-class counts by the server's own code,
+ * undo and redo, and saving by itself. Provided by the page that shows it.
+ */
+@Injectable()
+export class Bench {
+  private readonly binnings = inject(Binnings);
+  private address: { binningId: string; characteristicId: string } | null = null;
+  private etag = '';
+  private timer: ReturnType<typeof setTimeout> | undefined;
+  private saving: Promise<void> | null = null;
+
+  private readonly detailOf = signal<CharacteristicDetail | null>(null);
+  private readonly historyOf = signal<History | null>(null);
+  private readonly previewOf = signal<Bins | null>(null);
+  private readonly theirsOf = signal<Tagged<CharacteristicDetail> | null>(null);
+  private readonly stateOf = signal<SaveState>('saved');
+  private readonly problemOf = signal<unknown>(null);
+  private readonly savedAtOf = signal<string | null>(null);
+
+  readonly detail = this.detailOf.asReadonly();
+  readonly history = this.historyOf.asReadonly();
+  readonly state = this.stateOf.asReadonly();
+  readonly problem = this.problemOf.asReadonly();
+  readonly savedAt = this.savedAtOf.asReadonly();
+  /** What somebody else saved while this bench had edits of its own. */
+  readonly theirs = computed(() => this.theirsOf()?.value ?? null);
+  readonly editable = computed(() => this.detailOf()?.abilities.includes('edit') ?? false);
+  readonly unsaved = computed(() => this.stateOf() !== 'saved');
+  readonly unexplained = computed(() => {
+    const history = this.historyOf();
+    return history ? unexplained(history) : 0;
+  });
+
+  readonly fine = computed<FineClasses | null>(() => this.detailOf()?.fine ?? null);
+  /** The bins as they are, or as they would be where a cut is being dragged to. */
+  readonly bins = computed<Bins | null>(() => {
+    const history = this.historyOf();
+    return this.previewOf() ?? (history ? currentBins(history) : null);
+  });
+  readonly reading = computed<BenchReading | null>(() => {
+    const fine = this.fine();
+    const bins = this.bins();
+    return fine && bins ? readBench(fine, bins) : null;
+  });
+  readonly warnings = computed<readonly BenchWarning[]>(() => {
+    const reading = this.reading();
+    const detail = this.detailOf();
+    return reading && detail ? benchWarnings(reading, detail.constraints) : [];
+  });
+
+  async load(binningId: string, characteristicId: string): Promise<void> {
+    await this.flush();
+    clearTimeout(this.timer);
+    this.address = { binningId, characteristicId };
+    this.stateOf.set('saved');
+    this.previewOf.set(null);
+    this.detailOf.set(null);
+    this.historyOf.set(null);
+    this.theirsOf.set(null);
+    this.problemOf.set(null);
+    try {
+      const tagged = await this.binnings.readCharacteristic(binningId, characteristicId);
+      if (this.address?.characteristicId === characteristicId) this.take(tagged);
+    } catch (error) {
+      this.problemOf.set(error);
+    }
+  }
+
+  /** Shows where a drag would lead; nothing is an edit before it is let go. */
+  preview(bins: Bins | null): void {
+    this.previewOf.set(bins);
+  }
+
+  do(edit: EditOf<Bins> | null): boolean {
+    this.previewOf.set(null);
+    const history = this.historyOf();
+    if (!edit || !history || !this.editable()) return false;
+    this.change(act(history, edit, crypto.randomUUID(), performance.now()));
+    return true;
+  }
+
+  undo(): void {
+    this.stepTo(undo);
+  }
+
+  redo(): void {
+    this.stepTo(redo);
+  }
+
+  reset(): void {
+    this.stepTo(reset);
+  }
+
+  explain(id: string, reason: EditReason | null): void {
+    this.stepTo((history) => explain(history, id, reason));
+  }
+
+  /** Adds a cut at exactly this value; a fine class is split from the stored column where the value lies inside one. Rejects with a Problem. */
+  async addCutAt(value: number): Promise<boolean> {
+    await this.refine(value);
+    return this.onNumeric((fine, bins) => addCut(fine, bins, value));
+  }
+
+  /** Moves a cut to exactly this value. Rejects with a Problem. */
+  async moveCutTo(cut: number, value: number): Promise<boolean> {
+    await this.refine(value);
+    return this.onNumeric((fine, bins) => moveCut(fine, bins, cut, value));
+  }
+
+  /** Saves now what has not been saved. */
+  async flush(): Promise<void> {
+    clearTimeout(this.timer);
+    await this.saving;
+    if (this.stateOf() === 'waiting' || this.stateOf() === 'failed') await this.save();
+  }
+
+  /** Their bins, and what was edited here is let go. */
+  takeTheirs(): void {
+    const theirs = this.theirsOf();
+    if (theirs) this.take(theirs);
+  }
+
+  /** Own bins, saved over theirs as one more edit. */
+  keepMine(): void {
+    const theirs = this.theirsOf();
+    const history = this.historyOf();
+    if (!theirs || !history) return;
+    this.theirsOf.set(null);
+    this.etag = theirs.etag;
+    this.detailOf.set(theirs.value);
+    this.change(keepMine(theirs.value, currentBins(history), crypto.randomUUID()));
+  }
+
+  private stepTo(step: (history: History) => History): void {
+    const history = this.historyOf();
+    if (!history || !this.editable()) return;
+    const next = step(history);
+    if (next !== history) this.change(next);
+  }
+
+  private change(history: History): void {
+    this.historyOf.set(history);
+    if (this.stateOf() === 'stale' && this.theirsOf()) return;
+    this.stateOf.set('waiting');
+    this.schedule(saveAfter);
+  }
+
+  private schedule(after: number): void {
+    clearTimeout(this.timer);
+    this.timer = setTimeout(() => void this.save(), after);
+  }
+
+  private save(): Promise<void> {
+    this.saving ??= this.send().finally(() => (this.saving = null));
+    return this.saving;
+  }
+
+  private async send(): Promise<void> {
+    const sent = this.historyOf();
+    const { address } = this;
+    if (!sent || !address) return;
+    clearTimeout(this.timer);
+    this.stateOf.set('saving');
+    try {
+      const { value, etag } = await this.binnings.saveCharacteristic(
+        address.binningId,
+        address.characteristicId,
+        toSave(sent),
+        this.etag,
+      );
+      if (this.address !== address) return;
+      this.etag = etag;
+      this.detailOf.set(value);
+      this.savedAtOf.set(value.changedAt);
+      this.problemOf.set(null);
+      this.stateOf.set('saved');
+      // What was edited while the answer was under way.
+      if (this.historyOf() !== sent) {
+        this.stateOf.set('waiting');
+        this.schedule(saveAfter);
+      }
+    } catch (error) {
+      if (this.address !== address) return;
+      if (isStale(error)) await this.meet(address);
+      else {
+        this.problemOf.set(error);
+        this.stateOf.set('failed');
+        this.timer = setTimeout(() => void this.save(), retryAfter);
+      }
+    }
+  }
+
+  /** Somebody else was faster: looks at what they saved. */
+  private async meet(address: { binningId: string; characteristicId: string }): Promise<void> {
+    try {
+      this.theirsOf.set(await this.binnings.readCharacteristic(address.binningId, address.characteristicId));
+      this.stateOf.set('stale');
+    } catch (error) {
+      this.problemOf.set(error);
+      this.stateOf.set('failed');
+    }
+  }
+
+  private take({ value, etag }: Tagged<CharacteristicDetail>): void {
+    clearTimeout(this.timer);
+    this.etag = etag;
+    this.theirsOf.set(null);
+    this.previewOf.set(null);
+    this.problemOf.set(null);
+    this.detailOf.set(value);
+    this.historyOf.set(begin(value.automatic, value.editList));
+    this.savedAtOf.set(value.changedAt);
+    this.stateOf.set('saved');
+  }
+
+  private async refine(edge: number): Promise<void> {
+    const { address } = this;
+    if (!address || this.fine()?.edges.includes(edge)) return;
+    const finer = await this.binnings.splitFineClass(address.binningId, address.characteristicId, edge);
+    const detail = this.detailOf();
+    if (detail && this.address === address) this.detailOf.set({ ...detail, fine: finer.fine });
+  }
+
+  private onNumeric(make: (fine: FineClasses, bins: NumericBins) => EditOf<NumericBins> | null): boolean {
+    const fine = this.fine();
+    const history = this.historyOf();
+    const bins = history && currentBins(history);
+    return fine && bins?.kind === 'numeric' ? this.do(make(fine, bins)) : false;
+  }
+}

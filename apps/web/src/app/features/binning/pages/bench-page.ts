@@ -1,0 +1,379 @@
+import {
+  ChangeDetectionStrategy,
+  Component,
+  ElementRef,
+  Injector,
+  computed,
+  effect,
+  inject,
+  input,
+  signal,
+  viewChild,
+} from '@angular/core';
+import { MatButtonModule } from '@angular/material/button';
+import { MatButtonToggleModule } from '@angular/material/button-toggle';
+import { MatFormFieldModule } from '@angular/material/form-field';
+import { MatIconModule } from '@angular/material/icon';
+import { MatInputModule } from '@angular/material/input';
+import { MatSelectModule } from '@angular/material/select';
+import { Router, RouterLink } from '@angular/router';
+import {
+  groupCategories,
+  mergeGroups,
+  mergeNumeric,
+  readBench,
+  splitGroup,
+  splitNumeric,
+  binLabels,
+  type Bins,
+  type EditOf,
+  type PartitionName,
+} from '@tallystone/numeric/bench';
+import { informationValueInterval } from '@tallystone/numeric/binning/information-value';
+import { firstValueFrom } from 'rxjs';
+import { CurrentModel } from '../../../core/current-model';
+import { Shortcuts } from '../../../core/shortcuts';
+import { Task } from '../../../core/task';
+import { warnBeforeUnload } from '../../../core/unsaved-changes';
+import { DecisionNotice } from '../../../ui/decision-notice';
+import { metric, moment, plural, woe } from '../../../ui/numbers';
+import { PageHeader } from '../../../ui/page-header';
+import { ProblemList } from '../../../ui/problem-list';
+import { currentBins } from '../bench/history';
+import { Bench } from '../data/bench';
+import { Binnings, binningOf, characteristicsOf } from '../data/binnings';
+import { benchFinding, trendWords } from '../ui/bench-finding';
+import { BinsFigure } from '../ui/bins-figure';
+import { EditList, type KnownEdit } from '../ui/edit-list';
+import { type AxisMode, layOut } from '../ui/geometry';
+import { OutOfTimeCover } from '../ui/out-of-time-cover';
+import { Places } from '../ui/places';
+import type { ReclassAnswer, ReclassQuestion } from '../ui/reclass-dialog';
+import type { StaleAnswer, StaleQuestion } from '../ui/stale-dialog';
+
+/** The bench of one characteristic. */
+@Component({
+  selector: 'ts-bench-page',
+  changeDetection: ChangeDetectionStrategy.OnPush,
+  imports: [
+    RouterLink,
+    MatButtonModule,
+    MatButtonToggleModule,
+    MatFormFieldModule,
+    MatIconModule,
+    MatInputModule,
+    MatSelectModule,
+    BinsFigure,
+    DecisionNotice,
+    EditList,
+    OutOfTimeCover,
+    PageHeader,
+    Places,
+    ProblemList,
+  ],
+  providers: [Bench],
+  host: { class: 'ts-page' },
+  templateUrl: './bench-page.html',
+  styleUrl: './bench-page.scss',
+})
+export class BenchPage {
+  protected readonly bench = inject(Bench);
+  private readonly binnings = inject(Binnings);
+  private readonly injector = inject(Injector);
+  private readonly current = inject(CurrentModel);
+  private readonly router = inject(Router);
+
+  readonly modelId = input.required<string>();
+  readonly binningId = input.required<string>();
+  readonly characteristicId = input.required<string>();
+  readonly axis = input<string>();
+
+  readonly unsaved = this.bench.unsaved;
+
+  private readonly valueField = viewChild<ElementRef<HTMLInputElement>>('value');
+  protected readonly binning = binningOf(() => this.binningId());
+  private readonly list = characteristicsOf(() => this.binningId());
+  protected readonly cut = signal<number | null>(null);
+  protected readonly bin = signal<number | null>(null);
+  protected readonly chosen = signal<ReadonlySet<string>>(new Set());
+  protected readonly partition = signal<PartitionName>('development');
+  protected readonly writing = signal<string | null>(null);
+  protected readonly placing = new Task();
+  protected readonly changing = new Task();
+  private readonly asked = signal(false);
+
+  protected readonly column = computed(() => this.bench.detail()?.column ?? 'Bins');
+  protected readonly finding = computed(() => {
+    const fine = this.bench.fine();
+    const reading = this.bench.reading();
+    return fine && reading ? benchFinding(fine, reading, this.bench.warnings()) : null;
+  });
+  /** Spread of IV over resamples; recalculated only when bins are settled, not while a cut is on its way. */
+  private readonly spread = computed(() => {
+    const fine = this.bench.fine();
+    const history = this.bench.history();
+    if (!fine || !history) return null;
+    const bins = readBench(fine, currentBins(history)).bins;
+    const goods = bins.map(({ figures }) => figures.development?.goods ?? 0);
+    const bads = bins.map(({ figures }) => figures.development?.bads ?? 0);
+    if (!goods.some((count) => count > 0) || !bads.some((count) => count > 0)) return null;
+    return informationValueInterval(goods, bads, { resamples: 100, seed: 1 }).standardError;
+  });
+  protected readonly note = computed(() => {
+    const fine = this.bench.fine();
+    const reading = this.bench.reading();
+    if (!fine || !reading) return null;
+    const spread = this.spread();
+    return `${trendWords(fine, reading)}, IV ${woe(reading.informationValue)}${spread === null ? '' : ` ± ${woe(spread)}`}, Gini ${metric(reading.gini)}`;
+  });
+  protected readonly savedWords = computed(() => {
+    const at = this.bench.savedAt();
+    switch (this.bench.state()) {
+      case 'waiting':
+        return 'Not saved yet';
+      case 'saving':
+        return 'Saving';
+      case 'failed':
+        return 'Not saved; trying again';
+      case 'stale':
+        return 'Not saved: somebody else saved first';
+      default:
+        return at ? `Saved ${moment(at)}` : '';
+    }
+  });
+  protected readonly editsWords = computed(() => {
+    const count = this.bench.unexplained();
+    return `${plural(count, 'edit')} ${count === 1 ? 'has' : 'have'} no reason yet`;
+  });
+  protected readonly known = computed<ReadonlyMap<string, KnownEdit>>(
+    () => new Map((this.bench.detail()?.editList ?? []).map(({ id, by, at }) => [id, { by, at }])),
+  );
+  protected readonly mode = computed<AxisMode>(() => {
+    const asked = this.axis();
+    if (asked === 'value' || asked === 'rows') return asked;
+    return this.usualMode();
+  });
+  /** Along the values where every bin has room for its figures there; else by rows. Decided once per characteristic, not with every move. */
+  private readonly usualMode = computed<AxisMode>(() => {
+    const detail = this.bench.detail();
+    if (!detail) return 'value';
+    const reading = readBench(detail.fine, detail.automatic);
+    const { columns } = layOut(detail.fine, detail.automatic, reading, 1100, 'value');
+    return columns.every(({ x0, x1 }) => x1 - x0 > 44) ? 'value' : 'rows';
+  });
+  protected readonly coarse = computed(() => {
+    const reading = this.bench.reading();
+    return reading ? reading.bins.filter(({ kind }) => kind === 'cut' || kind === 'group') : [];
+  });
+  protected readonly selectedLabel = computed(() => {
+    const bin = this.bin();
+    return bin === null ? null : (this.coarse()[bin]?.label ?? null);
+  });
+  protected readonly cutValue = computed(() => {
+    const bins = this.bench.bins();
+    const cut = this.cut();
+    return bins?.kind === 'numeric' && cut !== null ? (bins.edges[cut] ?? null) : null;
+  });
+  protected readonly chosenWords = computed(() => `${plural(this.chosen().size, 'category', 'categories')} chosen`);
+  protected readonly neighbours = computed(() => {
+    const list = this.list.hasValue() ? this.list.value().characteristics : [];
+    const at = list.findIndex(({ id }) => id === this.characteristicId());
+    return { previous: list[at - 1] ?? null, next: at >= 0 ? (list[at + 1] ?? null) : null };
+  });
+
+  constructor() {
+    warnBeforeUnload(() => this.unsaved());
+    effect(() => {
+      const [binningId, characteristicId] = [this.binningId(), this.characteristicId()];
+      this.cut.set(null);
+      this.bin.set(null);
+      this.chosen.set(new Set());
+      void this.bench.load(binningId, characteristicId);
+    });
+    effect(() => {
+      if (this.bench.state() !== 'stale') this.asked.set(false);
+      else if (!this.asked()) {
+        this.asked.set(true);
+        void this.settle();
+      }
+    });
+    // The work's rule counts edits without a reason.
+    let before: number | null = null;
+    effect(() => {
+      if (this.bench.state() !== 'saved') return;
+      const now = this.bench.detail()?.editsWithoutReason ?? null;
+      if (before !== null && now !== null && now !== before) void this.current.reload();
+      before = now;
+    });
+    inject(Shortcuts).add(
+      { keys: 'Mod+z', does: 'Undo', where: 'Binning', run: () => this.bench.undo() },
+      { keys: 'Mod+Shift+z', does: 'Redo', where: 'Binning', run: () => this.bench.redo() },
+      { keys: 'Mod+y', does: 'Redo', where: 'Binning', run: () => this.bench.redo() },
+      { keys: 'a', does: 'Add a cut at a value', where: 'Binning', run: () => this.toValue(null) },
+      { keys: 'm', does: 'Merge the selected bin with the next', where: 'Binning', run: () => this.merge(0) },
+      { keys: 's', does: 'Split the selected bin at its best cut', where: 'Binning', run: () => this.split() },
+      { keys: ']', does: 'Next characteristic', where: 'Binning', run: () => this.goTo(this.neighbours().next?.id) },
+      { keys: '[', does: 'Previous characteristic', where: 'Binning', run: () => this.goTo(this.neighbours().previous?.id) },
+    );
+  }
+
+  flush(): Promise<void> {
+    return this.bench.flush();
+  }
+
+  protected edit(edit: EditOf<Bins> | null): void {
+    if (!this.bench.do(edit)) return;
+    this.placing.clear();
+    const count = this.coarse().length;
+    if ((this.bin() ?? 0) >= count) this.bin.set(null);
+    if ((this.cut() ?? 0) >= count - 1) this.cut.set(null);
+  }
+
+  /** Merges the selected bin with the one after it (0) or before it (-1). */
+  protected merge(side: 0 | -1): void {
+    const bins = this.bench.bins();
+    const fine = this.bench.fine();
+    const bin = this.bin();
+    if (!bins || !fine || bin === null) return;
+    this.edit(bins.kind === 'numeric' ? mergeNumeric(fine, bins, bin + side) : mergeGroups(fine, bins, bin, bin + 1 + 2 * side));
+  }
+
+  protected split(): void {
+    const bins = this.bench.bins();
+    const fine = this.bench.fine();
+    const bin = this.bin();
+    if (!bins || !fine || bin === null) return;
+    this.edit(bins.kind === 'numeric' ? splitNumeric(fine, bins, bin) : splitGroup(fine, bins, bin));
+  }
+
+  protected group(target: number | 'new'): void {
+    const bins = this.bench.bins();
+    const fine = this.bench.fine();
+    if (!fine || bins?.kind !== 'categorical') return;
+    this.edit(groupCategories(fine, bins, [...this.chosen()], target));
+    this.chosen.set(new Set());
+  }
+
+  protected onBinKey({ bin, event }: { bin: number; event: KeyboardEvent }): void {
+    if (event.key !== 'm' && event.key !== 's') return;
+    event.stopPropagation();
+    this.bin.set(bin);
+    if (event.key === 'm') this.merge(0);
+    else this.split();
+  }
+
+  /** To the field in which a value is typed: for the selected cut, or for a new one. */
+  protected toValue(cut: number | null): void {
+    this.cut.set(cut);
+    const field = this.valueField()?.nativeElement;
+    field?.focus();
+    field?.select();
+  }
+
+  /** A value was typed: the selected cut goes there, or a new cut comes. */
+  protected place(event: Event): void {
+    event.preventDefault();
+    const field = this.valueField()?.nativeElement;
+    const value = field ? field.valueAsNumber : Number.NaN;
+    if (!Number.isFinite(value)) return;
+    const cut = this.cut();
+    void this.placing.run(async () => {
+      const done = cut === null ? await this.bench.addCutAt(value) : await this.bench.moveCutTo(cut, value);
+      if (!done)
+        throw new Error(
+          cut === null
+            ? `There is a cut at ${value} already.`
+            : 'A cut stays between its neighbours, and this one is there already or would pass them.',
+        );
+      if (cut === null && field) field.value = '';
+    });
+  }
+
+  protected removeCut(): void {
+    const bins = this.bench.bins();
+    const fine = this.bench.fine();
+    const cut = this.cut();
+    if (fine && cut !== null && bins?.kind === 'numeric') this.edit(mergeNumeric(fine, bins, cut));
+  }
+
+  protected show(axis: AxisMode): void {
+    void this.router.navigate([], { queryParams: { axis }, queryParamsHandling: 'merge', replaceUrl: true });
+  }
+
+  protected async reclass(): Promise<void> {
+    await this.bench.flush();
+    const detail = this.bench.detail();
+    if (!detail || this.bench.unsaved()) return;
+    const [{ MatDialog }, { ReclassDialog }] = await Promise.all([
+      import('@angular/material/dialog'),
+      import('../ui/reclass-dialog'),
+    ]);
+    const data: ReclassQuestion = { columns: [detail.column], constraints: detail.constraints, edits: detail.edits };
+    const reference = this.injector
+      .get(MatDialog)
+      .open<InstanceType<typeof ReclassDialog>, ReclassQuestion, ReclassAnswer>(ReclassDialog, { data, width: '600px' });
+    const answer = await firstValueFrom(reference.afterClosed());
+    if (!answer) return;
+    const { fineClasses: _fineClasses, ...constraints } = answer.constraints;
+    await this.changing.run(async () => {
+      await this.binnings.reclass(this.binningId(), {
+        characteristics: [{ id: detail.id, revision: detail.revision }],
+        constraints,
+        reason: answer.reason,
+      });
+      await this.bench.load(this.binningId(), this.characteristicId());
+      await this.current.reload();
+    });
+  }
+
+  protected async openOutOfTime(reason: string): Promise<void> {
+    if (!this.binning.hasValue()) return;
+    const { definitionId } = this.binning.value();
+    await this.changing.run(async () => {
+      await this.bench.flush();
+      await this.binnings.openOutOfTime(definitionId, reason);
+      this.binning.reload();
+      await this.bench.load(this.binningId(), this.characteristicId());
+    });
+  }
+
+  /** Theirs or mine, side by side. */
+  protected async settle(): Promise<void> {
+    const theirs = this.bench.theirs();
+    const history = this.bench.history();
+    if (!theirs || !history) return;
+    const [{ MatDialog }, { StaleDialog }] = await Promise.all([
+      import('@angular/material/dialog'),
+      import('../ui/stale-dialog'),
+    ]);
+    const mine = currentBins(history);
+    const data: StaleQuestion = {
+      column: theirs.column,
+      by: theirs.changedBy,
+      at: theirs.changedAt,
+      theirs: {
+        informationValue: theirs.informationValue,
+        bins: binLabels(theirs.fine, theirs.current),
+        edits: theirs.editList.map(({ what, by }) => `${what} (${by})`),
+      },
+      mine: {
+        informationValue: readBench(theirs.fine, mine).informationValue,
+        bins: binLabels(theirs.fine, mine),
+        edits: history.edits.map(({ what }) => what),
+      },
+    };
+    const reference = this.injector
+      .get(MatDialog)
+      .open<InstanceType<typeof StaleDialog>, StaleQuestion, StaleAnswer>(StaleDialog, { data, width: '640px' });
+    const answer = await firstValueFrom(reference.afterClosed());
+    if (answer === 'theirs') this.bench.takeTheirs();
+    else if (answer === 'mine') this.bench.keepMine();
+  }
+
+  private goTo(id: string | undefined): void {
+    if (id)
+      void this.router.navigate(['/models', this.modelId(), 'binning', this.binningId(), id], {
+        queryParamsHandling: 'preserve',
+      });
+  }
+}

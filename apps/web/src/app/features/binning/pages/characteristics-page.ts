@@ -1,0 +1,222 @@
+import { ChangeDetectionStrategy, Component, Injector, computed, inject, input, signal } from '@angular/core';
+import { takeUntilDestroyed } from '@angular/core/rxjs-interop';
+import { MatButtonModule } from '@angular/material/button';
+import { MatCheckboxModule } from '@angular/material/checkbox';
+import { MatFormFieldModule } from '@angular/material/form-field';
+import { MatInputModule } from '@angular/material/input';
+import { MatSelectModule } from '@angular/material/select';
+import { Router, RouterLink } from '@angular/router';
+import { Subject, debounceTime, filter, firstValueFrom } from 'rxjs';
+import { CurrentModel } from '../../../core/current-model';
+import { Runs } from '../../../core/events/runs';
+import { Task } from '../../../core/task';
+import { Ask } from '../../../ui/ask';
+import type { Column } from '../../../ui/column';
+import { CellTemplate, DenseTable, type TableSort } from '../../../ui/dense-table';
+import { plural } from '../../../ui/numbers';
+import { PageHeader } from '../../../ui/page-header';
+import { ProblemList } from '../../../ui/problem-list';
+import { RunProgress } from '../../../ui/run-progress';
+import { type CharacteristicList, type CharacteristicSummary, Binnings, binningOf, characteristicsOf } from '../data/binnings';
+import { asPart, filtered, partWords, riskTrend, shownParts, warningsOf } from '../ui/characteristic-filter';
+import { usualConstraints } from '../ui/constraints-form';
+import { OutOfTimeCover } from '../ui/out-of-time-cover';
+import type { ReclassAnswer, ReclassQuestion } from '../ui/reclass-dialog';
+
+/** Every characteristic of a binning with what its bins say. Search, part and order stand in the address. */
+@Component({
+  selector: 'ts-characteristics-page',
+  changeDetection: ChangeDetectionStrategy.OnPush,
+  imports: [
+    RouterLink,
+    MatButtonModule,
+    MatCheckboxModule,
+    MatFormFieldModule,
+    MatInputModule,
+    MatSelectModule,
+    CellTemplate,
+    DenseTable,
+    OutOfTimeCover,
+    PageHeader,
+    ProblemList,
+    RunProgress,
+  ],
+  host: { class: 'ts-page' },
+  templateUrl: './characteristics-page.html',
+  styleUrl: './characteristics-page.scss',
+})
+export class CharacteristicsPage {
+  private readonly binnings = inject(Binnings);
+  private readonly router = inject(Router);
+  private readonly asking = inject(Ask);
+  private readonly injector = inject(Injector);
+  private readonly runs = inject(Runs);
+  private readonly current = inject(CurrentModel);
+
+  readonly modelId = input.required<string>();
+  readonly binningId = input.required<string>();
+  readonly search = input<string>();
+  readonly show = input<string>();
+  readonly sort = input<string>();
+
+  protected readonly binning = binningOf(() => this.binningId());
+  protected readonly list = characteristicsOf(() => this.binningId());
+  protected readonly changing = new Task();
+  protected readonly chosen = signal<ReadonlySet<string>>(new Set());
+  protected readonly parts = shownParts;
+  protected readonly partWords = partWords;
+  protected readonly part = computed(() => asPart(this.show()));
+  protected readonly mayEdit = computed(() => this.binning.hasValue() && this.binning.value().abilities.includes('edit'));
+  protected readonly mayOpen = computed(() => this.current.can('develop'));
+  protected readonly run = this.runs.run(() => (this.binning.hasValue() ? this.binning.value().runId : null));
+  protected readonly all = computed(() => (this.list.hasValue() ? this.list.value().characteristics : null));
+  protected readonly rows = computed(() => filtered(this.all() ?? [], this.part(), this.search() ?? ''));
+  protected readonly finding = computed(() => (this.list.hasValue() ? this.list.value().finding : null));
+  protected readonly picked = computed(() => (this.all() ?? []).filter(({ id }) => this.chosen().has(id)));
+  protected readonly pickedWords = computed(() => `${plural(this.picked().length, 'characteristic')} chosen`);
+  protected readonly someIncluded = computed(() => this.picked().some(({ included }) => included));
+  protected readonly someLeftOut = computed(() => this.picked().some(({ included }) => !included));
+  protected readonly allChosen = computed(() => this.rows().length > 0 && this.rows().every(({ id }) => this.chosen().has(id)));
+  protected readonly order = computed<TableSort | null>(() => {
+    const [key, direction] = (this.sort() ?? 'iv.down').split('.');
+    return this.columns().some((column) => column.key === key) ? { key, descending: direction === 'down' } : null;
+  });
+  protected readonly columns = computed<readonly Column<CharacteristicSummary>[]>(() => [
+    { key: 'column', label: 'Characteristic', value: (row) => row.column, link: (row) => [row.id], sortable: true },
+    ...(this.mayEdit()
+      ? [{ key: 'choose', label: 'Choose', value: (row: CharacteristicSummary) => (this.chosen().has(row.id) ? 'yes' : 'no') }]
+      : []),
+    { key: 'iv', label: 'IV', kind: 'number', decimals: 3, value: (row) => row.informationValue, sortable: true },
+    { key: 'reading', label: 'Reading', value: (row) => row.reading, sortable: true },
+    { key: 'gini', label: 'Gini', kind: 'metric', value: (row) => row.gini, sortable: true },
+    { key: 'missing', label: 'Missing', kind: 'share', value: (row) => row.missingShare, sortable: true },
+    { key: 'bins', label: 'Bins', kind: 'count', value: (row) => row.bins, sortable: true },
+    { key: 'trend', label: 'Risk', value: (row) => riskTrend[row.trend], sortable: true },
+    { key: 'edits', label: 'Edits', kind: 'count', value: (row) => row.edits, sortable: true },
+    { key: 'warnings', label: 'To look at', value: (row) => warningsOf(row), sortable: true },
+    {
+      key: 'state',
+      label: 'In fits',
+      value: (row) => (row.included ? 'included' : `left out: ${row.leftOutReason}`),
+      sortable: true,
+      width: 36,
+    },
+  ]);
+  private readonly typed = new Subject<string>();
+
+  constructor() {
+    this.typed.pipe(debounceTime(250), takeUntilDestroyed()).subscribe((search) => this.go({ search: search.trim() || null }));
+    this.runs.finished
+      .pipe(
+        filter((run) => run.kind === 'binning.class' && run.entityId === this.binningId()),
+        takeUntilDestroyed(),
+      )
+      .subscribe(() => this.reload());
+  }
+
+  protected readonly identify = (row: CharacteristicSummary): string => row.id;
+  protected readonly leftOut = (row: CharacteristicSummary): boolean => !row.included;
+
+  protected reload(): void {
+    this.binning.reload();
+    this.list.reload();
+  }
+
+  protected type(event: Event): void {
+    this.typed.next((event.target as HTMLInputElement).value);
+  }
+
+  protected reorder(sort: TableSort | null): void {
+    this.go({ sort: sort ? `${sort.key}.${sort.descending ? 'down' : 'up'}` : null });
+  }
+
+  protected go(queryParams: Record<string, string | null>): void {
+    void this.router.navigate([], { queryParams, queryParamsHandling: 'merge', replaceUrl: true });
+  }
+
+  protected choose(id: string, chosen: boolean): void {
+    const next = new Set(this.chosen());
+    if (chosen) next.add(id);
+    else next.delete(id);
+    this.chosen.set(next);
+  }
+
+  protected chooseAll(chosen: boolean): void {
+    this.chosen.set(chosen ? new Set(this.rows().map(({ id }) => id)) : new Set());
+  }
+
+  protected async leaveOut(): Promise<void> {
+    const picked = this.picked().filter(({ included }) => included);
+    const answer = await this.asking.for({
+      title: `Leave ${picked.length === 1 ? picked[0].column : plural(picked.length, 'characteristic')} out?`,
+      text: 'It stays classed and can be taken in again. Fits started from now on do not have it.',
+      accept: 'Leave out',
+      reason: {
+        label: 'Why',
+        required: true,
+        text: true,
+        choices: ['Tells nobody apart', 'Not known at application', 'Data of poor quality', 'Same as another characteristic'],
+      },
+    });
+    if (answer)
+      await this.change(() =>
+        this.binnings.setInclusion(this.binningId(), {
+          characteristics: references(picked),
+          included: false,
+          reason: answer.reason,
+        }),
+      );
+  }
+
+  protected async takeIn(): Promise<void> {
+    const picked = this.picked().filter(({ included }) => !included);
+    await this.change(() =>
+      this.binnings.setInclusion(this.binningId(), { characteristics: references(picked), included: true }),
+    );
+  }
+
+  protected async reclass(): Promise<void> {
+    const picked = this.picked();
+    const [{ MatDialog }, { ReclassDialog }] = await Promise.all([
+      import('@angular/material/dialog'),
+      import('../ui/reclass-dialog'),
+    ]);
+    const data: ReclassQuestion = {
+      columns: picked.map(({ column }) => column),
+      constraints: this.binning.hasValue() ? this.binning.value().constraints : usualConstraints,
+      edits: picked.reduce((sum, { edits }) => sum + edits, 0),
+    };
+    const reference = this.injector
+      .get(MatDialog)
+      .open<InstanceType<typeof ReclassDialog>, ReclassQuestion, ReclassAnswer>(ReclassDialog, { data, width: '600px' });
+    const answer = await firstValueFrom(reference.afterClosed());
+    if (!answer) return;
+    const { fineClasses: _fineClasses, ...constraints } = answer.constraints;
+    await this.change(() =>
+      this.binnings.reclass(this.binningId(), { characteristics: references(picked), constraints, reason: answer.reason }),
+    );
+  }
+
+  protected async openOutOfTime(reason: string): Promise<void> {
+    if (!this.binning.hasValue()) return;
+    const { definitionId } = this.binning.value();
+    await this.changing.run(async () => {
+      await this.binnings.openOutOfTime(definitionId, reason);
+      this.reload();
+    });
+  }
+
+  private async change(work: () => Promise<CharacteristicList>): Promise<void> {
+    await this.changing.run(async () => {
+      this.list.set(await work());
+      this.chosen.set(new Set());
+      this.binning.reload();
+      await this.current.reload();
+    });
+    // Somebody else was faster: the list as it is now lies under the message.
+    if (this.changing.error()) this.list.reload();
+  }
+}
+
+const references = (list: readonly CharacteristicSummary[]): { id: string; revision: number }[] =>
+  list.map(({ id, revision }) => ({ id, revision }));

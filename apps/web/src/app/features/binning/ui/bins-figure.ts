@@ -1,0 +1,400 @@
+import {
+  ChangeDetectionStrategy,
+  Component,
+  type ElementRef,
+  computed,
+  input,
+  model,
+  output,
+  signal,
+  viewChild,
+} from '@angular/core';
+import {
+  edgeBeside,
+  groupCategories,
+  mergeNumeric,
+  moveCut,
+  type BenchReading,
+  type Bins,
+  type EditOf,
+  type FineClasses,
+  type NumericBins,
+  type PartitionName,
+} from '@tallystone/numeric/bench';
+import { axisLeft } from 'd3-axis';
+import { AxisDirective } from '../../../ui/axis';
+import type { Column } from '../../../ui/column';
+import { ElementWidth } from '../../../ui/element-width';
+import { FigureFrame, FigurePoint } from '../../../ui/figure-frame';
+import { count, share, woe } from '../../../ui/numbers';
+import { partitionName, partitionPath } from '../../../ui/partition-mark';
+import { BinsTable } from './bins-table';
+import { type AxisMode, type DrawnCut, categoryOrder, ladderScale, layOut, notchedLine, shownLabels, sizes } from './geometry';
+
+interface Dragged {
+  readonly pointer: number;
+  readonly cut: number;
+  /** As they were when the drag began: the edit is against these. */
+  readonly bins: NumericBins;
+}
+
+interface DraggedCategory {
+  readonly pointer: number;
+  readonly categories: readonly string[];
+  readonly fromX: number;
+  readonly moved: boolean;
+  /** Group under the pointer. */
+  readonly over: number | null;
+}
+
+interface TableRow {
+  readonly bin: number;
+  readonly label: string;
+  readonly partition: PartitionName;
+}
+
+/**
+ * The figure of one characteristic: goods above and bads below one axis, cuts as notches in it, a ladder of log odds and the table, aligned
+ * under their bins. Cuts are dragged or moved by keys; categories are chosen and dragged onto a group.
+ */
+@Component({
+  selector: 'ts-bins-figure',
+  changeDetection: ChangeDetectionStrategy.OnPush,
+  imports: [AxisDirective, BinsTable, ElementWidth, FigureFrame, FigurePoint],
+  templateUrl: './bins-figure.html',
+  styleUrl: './bins-figure.scss',
+})
+export class BinsFigure {
+  readonly title = input.required<string>();
+  readonly note = input<string | null>(null);
+  readonly finding = input<string | null>(null);
+  readonly fine = input.required<FineClasses>();
+  readonly bins = input.required<Bins>();
+  readonly reading = input.required<BenchReading>();
+  readonly editable = input(false);
+  readonly mode = input<AxisMode>('value');
+  readonly partition = input<PartitionName>('development');
+  /** The cut that keys and the value field act on. */
+  readonly cut = model<number | null>(null);
+  readonly bin = model<number | null>(null);
+  readonly chosen = model<ReadonlySet<string>>(new Set());
+
+  /** Where a drag would lead; null when it is over. */
+  readonly previewed = output<Bins | null>();
+  readonly edited = output<EditOf<Bins>>();
+  /** A value is to be typed for the selected cut. */
+  readonly typing = output<void>();
+  readonly binKey = output<{ bin: number; event: KeyboardEvent }>();
+
+  private readonly svg = viewChild<ElementRef<SVGSVGElement>>('svg');
+  protected readonly wide = signal(960);
+  protected readonly dragged = signal<Dragged | null>(null);
+  protected readonly carried = signal<DraggedCategory | null>(null);
+  private readonly focusedCategory = signal<string | null>(null);
+
+  protected readonly sizes = sizes;
+  protected readonly count = count;
+  protected readonly geometry = computed(() => layOut(this.fine(), this.bins(), this.reading(), this.wide(), this.mode()));
+  protected readonly axisY = computed(() => this.geometry().baseline + sizes.bads + sizes.gap);
+  protected readonly ladderTop = computed(() => this.axisY() + sizes.axis + sizes.ladderGap);
+  protected readonly height = computed(() => this.ladderTop() + sizes.ladder + 8);
+  protected readonly scale = computed(() => ladderScale(this.reading(), this.ladderTop()));
+  protected readonly ladderAxis = computed(() => axisLeft(this.scale()).ticks(5));
+  protected readonly line = computed(() =>
+    notchedLine(this.geometry().axis, this.numeric() ? this.geometry().cuts : this.groupBounds(), this.axisY()),
+  );
+  protected readonly labels = computed(() => shownLabels(this.geometry().cuts, this.cut()));
+  protected readonly numeric = computed(() => this.fine().kind === 'numeric');
+  protected readonly holdOutPath = partitionPath('holdOut', 5);
+  protected readonly outOfTimePath = partitionPath('outOfTime', 4.6);
+
+  /** Notches between groups. */
+  protected readonly groupBounds = computed(() => {
+    const { columns } = this.geometry();
+    const groups = columns.filter(({ bin }) => bin !== null && this.reading().bins[bin].kind === 'group');
+    return groups.slice(1).map(({ x0 }) => ({ x: x0 }));
+  });
+
+  /** Categories in the order they are drawn. */
+  protected readonly categories = computed(() => {
+    const fine = this.fine();
+    const drawn = new Map(this.geometry().classes.map((one) => [one.slot, one]));
+    const step = Math.max(1, (this.geometry().axis[1] - this.geometry().axis[0]) / Math.max(1, fine.categories.length));
+    return categoryOrder(fine, this.bins()).map((slot) => {
+      const name = fine.categories[slot];
+      const room = Math.max(3, Math.floor(step / 7));
+      return {
+        name,
+        slot,
+        x: drawn.get(slot)?.x ?? 0,
+        width: step,
+        short: name.length > room ? `${name.slice(0, room - 1)}…` : name,
+      };
+    });
+  });
+
+  protected readonly ladder = computed(() => {
+    const scale = this.scale();
+    const [bottom, top] = scale.domain();
+    const clamp = (value: number): number => scale(Math.min(top, Math.max(bottom, value)));
+    return this.geometry().columns.flatMap(({ bin, label, x0, x1 }) => {
+      if (bin === null) return [];
+      const { development, holdOut, outOfTime } = this.reading().bins[bin].figures;
+      const inset = Math.min(5, (x1 - x0) / 6);
+      const mark = (figures: typeof holdOut, part: number, name: PartitionName) =>
+        figures?.logOdds == null
+          ? null
+          : {
+              x: x0 + (x1 - x0) * part,
+              y: scale(figures.logOdds),
+              label: `${partitionName(name)}, ${label}: log odds ${woe(figures.logOdds)}, bad rate ${share(figures.badRate)}`,
+            };
+      return [
+        {
+          label,
+          x: x0 + inset,
+          width: Math.max(2, x1 - x0 - 2 * inset),
+          bar:
+            development?.logOdds == null || development.logOddsLower === null || development.logOddsUpper === null
+              ? null
+              : {
+                  y: scale(development.logOdds),
+                  high: clamp(development.logOddsUpper),
+                  low: clamp(development.logOddsLower),
+                  label: `Development, ${label}: log odds ${woe(development.logOdds)}, bad rate ${share(development.badRate)}, ${count(development.rows)} rows`,
+                },
+          holdOut: mark(holdOut, outOfTime ? 0.36 : 0.5, 'holdOut'),
+          outOfTime: mark(outOfTime, 0.64, 'outOfTime'),
+        },
+      ];
+    });
+  });
+
+  /** The same numbers for those who read, by bin and partition. */
+  protected readonly table = computed(() => {
+    const reading = this.reading();
+    const names: PartitionName[] = ['development', 'holdOut', ...(this.fine().outOfTime ? (['outOfTime'] as const) : [])];
+    const rows: TableRow[] = reading.bins.flatMap(({ label }, bin) => names.map((partition) => ({ bin, label, partition })));
+    const figures = ({ bin, partition }: TableRow) => reading.bins[bin].figures[partition];
+    const columns: Column<TableRow>[] = [
+      { key: 'bin', label: 'Bin', value: (row) => row.label },
+      { key: 'partition', label: 'Partition', value: (row) => partitionName(row.partition) },
+      { key: 'rows', label: 'Rows', kind: 'count', value: (row) => figures(row)?.rows },
+      { key: 'goods', label: 'Goods', kind: 'number', decimals: 0, value: (row) => figures(row)?.goods },
+      { key: 'bads', label: 'Bads', kind: 'number', decimals: 0, value: (row) => figures(row)?.bads },
+      { key: 'share', label: 'Share', kind: 'share', value: (row) => figures(row)?.share },
+      { key: 'rate', label: 'Bad rate', kind: 'share', value: (row) => figures(row)?.badRate },
+      { key: 'lower', label: 'From', unit: '95 % interval', kind: 'share', value: (row) => figures(row)?.lower },
+      { key: 'upper', label: 'To', unit: '95 % interval', kind: 'share', value: (row) => figures(row)?.upper },
+      { key: 'odds', label: 'Log odds', kind: 'woe', value: (row) => figures(row)?.logOdds },
+      { key: 'woe', label: 'WOE', kind: 'woe', value: (row) => figures(row)?.woe },
+      { key: 'part', label: 'IV part', kind: 'number', decimals: 3, value: (row) => figures(row)?.part },
+    ];
+    return { columns, rows };
+  });
+
+  protected cutLabel({ cut }: DrawnCut): string {
+    return `Cut ${cut + 1} of ${this.geometry().cuts.length}`;
+  }
+
+  protected cutWords({ cut, edge }: DrawnCut): string {
+    const { bins, informationValue } = this.reading();
+    const rate = (bin: number): string => share(bins[bin]?.figures.development?.badRate);
+    return `${edge}; bad rate ${rate(cut)} below, ${rate(cut + 1)} from there on; IV ${woe(informationValue)}`;
+  }
+
+  protected reach(cut: number): { min: number; max: number } {
+    const { edges } = this.bins() as NumericBins;
+    const within = this.fine().edges.filter(
+      (edge) => edge > (edges[cut - 1] ?? -Infinity) && edge < (edges[cut + 1] ?? Infinity),
+    );
+    return { min: within[0] ?? edges[cut], max: within[within.length - 1] ?? edges[cut] };
+  }
+
+  protected keyOnCut(event: KeyboardEvent, cut: number): void {
+    const bins = this.bins();
+    if (!this.editable() || bins.kind !== 'numeric' || event.ctrlKey || event.metaKey || event.altKey) return;
+    const fine = this.fine();
+    let edge: number | null = null;
+    const along = (steps: number): number | null => {
+      let at: NumericBins = bins;
+      let found: number | null = null;
+      for (let step = 0; step < Math.abs(steps); step++) {
+        const next = edgeBeside(fine, at, cut, steps > 0 ? 1 : -1);
+        if (next === null) break;
+        found = next;
+        at = { ...at, edges: at.edges.map((value, index) => (index === cut ? next : value)) };
+      }
+      return found;
+    };
+    switch (event.key) {
+      case 'ArrowRight':
+      case 'ArrowUp':
+        edge = along(1);
+        break;
+      case 'ArrowLeft':
+      case 'ArrowDown':
+        edge = along(-1);
+        break;
+      case 'PageUp':
+        edge = along(5);
+        break;
+      case 'PageDown':
+        edge = along(-5);
+        break;
+      case 'Home':
+        edge = this.reach(cut).min;
+        break;
+      case 'End':
+        edge = this.reach(cut).max;
+        break;
+      case 'Delete':
+      case 'Backspace':
+        this.emit(mergeNumeric(fine, bins, cut));
+        event.preventDefault();
+        return;
+      case 'Enter':
+        this.cut.set(cut);
+        this.typing.emit();
+        event.preventDefault();
+        return;
+      case 'Escape':
+        this.letGo();
+        return;
+      default:
+        return;
+    }
+    event.preventDefault();
+    if (edge !== null) this.emit(moveCut(fine, bins, cut, edge));
+  }
+
+  protected grab(event: PointerEvent, cut: number): void {
+    const bins = this.bins();
+    this.cut.set(cut);
+    if (!this.editable() || bins.kind !== 'numeric' || event.button !== 0) return;
+    (event.currentTarget as Element).setPointerCapture(event.pointerId);
+    this.dragged.set({ pointer: event.pointerId, cut, bins });
+  }
+
+  protected drag(event: PointerEvent): void {
+    const dragged = this.dragged();
+    if (!dragged || dragged.pointer !== event.pointerId) return;
+    const edge = this.nearest(dragged, this.atX(event));
+    const moved = edge === null ? null : moveCut(this.fine(), dragged.bins, dragged.cut, edge);
+    this.previewed.emit(moved?.bins ?? dragged.bins);
+  }
+
+  protected drop(event: PointerEvent): void {
+    const dragged = this.dragged();
+    if (!dragged || dragged.pointer !== event.pointerId) return;
+    this.dragged.set(null);
+    const edge = this.nearest(dragged, this.atX(event));
+    this.previewed.emit(null);
+    if (edge !== null) this.emit(moveCut(this.fine(), dragged.bins, dragged.cut, edge));
+  }
+
+  /** Ends a drag where it began. */
+  protected letGo(): void {
+    this.dragged.set(null);
+    this.carried.set(null);
+    this.previewed.emit(null);
+  }
+
+  protected keyOnCategory(event: KeyboardEvent, name: string): void {
+    const names = this.categories().map((category) => category.name);
+    const at = names.indexOf(name);
+    const go = (to: number): void => {
+      const next = names[Math.min(names.length - 1, Math.max(0, to))];
+      this.focusedCategory.set(next);
+      const element = [...(this.svg()?.nativeElement.querySelectorAll<SVGElement>('[data-category]') ?? [])].find(
+        (one) => one.dataset['category'] === next,
+      );
+      element?.focus();
+      event.preventDefault();
+    };
+    if (event.key === 'ArrowRight') go(at + 1);
+    else if (event.key === 'ArrowLeft') go(at - 1);
+    else if (event.key === 'Home') go(0);
+    else if (event.key === 'End') go(names.length - 1);
+    else if (event.key === ' ' || event.key === 'Enter') {
+      this.choose(name);
+      event.preventDefault();
+    } else if (event.key === 'n') this.group('new', name);
+    else if (/^[1-9]$/.test(event.key)) this.group(Number(event.key) - 1, name);
+    else return;
+    event.stopPropagation();
+  }
+
+  protected tabOf(name: string, first: boolean): number {
+    const focused = this.focusedCategory();
+    const known = focused !== null && this.fine().categories.includes(focused);
+    return (known ? focused === name : first) ? 0 : -1;
+  }
+
+  protected choose(name: string): void {
+    const chosen = new Set(this.chosen());
+    if (!chosen.delete(name)) chosen.add(name);
+    this.chosen.set(chosen);
+    this.focusedCategory.set(name);
+  }
+
+  protected lift(event: PointerEvent, name: string): void {
+    if (!this.editable() || event.button !== 0) return;
+    (event.currentTarget as Element).setPointerCapture(event.pointerId);
+    const categories = this.chosen().has(name) ? [...this.chosen()] : [name];
+    this.carried.set({ pointer: event.pointerId, categories, fromX: event.clientX, moved: false, over: null });
+  }
+
+  protected carry(event: PointerEvent): void {
+    const carried = this.carried();
+    if (!carried || carried.pointer !== event.pointerId) return;
+    const moved = carried.moved || Math.abs(event.clientX - carried.fromX) > 4;
+    this.carried.set({ ...carried, moved, over: moved ? this.groupAt(this.atX(event)) : null });
+  }
+
+  protected put(event: PointerEvent, name: string): void {
+    const carried = this.carried();
+    if (!carried || carried.pointer !== event.pointerId) return;
+    this.carried.set(null);
+    if (!carried.moved) {
+      this.choose(name);
+      return;
+    }
+    const bins = this.bins();
+    const over = this.groupAt(this.atX(event));
+    if (bins.kind === 'categorical' && over !== null) this.emit(groupCategories(this.fine(), bins, carried.categories, over));
+  }
+
+  private group(target: number | 'new', name: string): void {
+    const bins = this.bins();
+    if (!this.editable() || bins.kind !== 'categorical') return;
+    this.emit(groupCategories(this.fine(), bins, this.chosen().size > 0 ? [...this.chosen()] : [name], target));
+  }
+
+  private emit(edit: EditOf<Bins> | null): void {
+    if (edit) this.edited.emit(edit);
+    if (edit && edit.kind !== 'cut moved') this.chosen.set(new Set());
+  }
+
+  private nearest({ cut, bins }: Dragged, x: number): number | null {
+    const [low, high] = [bins.edges[cut - 1] ?? -Infinity, bins.edges[cut + 1] ?? Infinity];
+    let best: { edge: number; away: number } | null = null;
+    for (const place of this.geometry().edges) {
+      if (place.edge <= low || place.edge >= high) continue;
+      const away = Math.abs(place.x - x);
+      if (best === null || away < best.away) best = { edge: place.edge, away };
+    }
+    return best?.edge ?? null;
+  }
+
+  private groupAt(x: number): number | null {
+    const column = this.geometry().columns.find(({ bin, x0, x1 }) => bin !== null && x >= x0 && x < x1);
+    return column && column.bin !== null && this.reading().bins[column.bin].kind === 'group' ? column.bin : null;
+  }
+
+  /** Horizontal place of the pointer in the drawing's own pixels. */
+  private atX(event: PointerEvent): number {
+    const box = this.svg()?.nativeElement.getBoundingClientRect();
+    return box && box.width > 0 ? ((event.clientX - box.left) * this.geometry().width) / box.width : 0;
+  }
+}

@@ -1,0 +1,115 @@
+import { ChangeDetectionStrategy, Component, input } from '@angular/core';
+import { FormControl, FormGroup, ReactiveFormsModule, Validators, type ValidatorFn } from '@angular/forms';
+import { MatFormFieldModule } from '@angular/material/form-field';
+import { MatInputModule } from '@angular/material/input';
+import { MatSelectModule } from '@angular/material/select';
+import type { Constraints } from '@tallystone/contracts/binnings/bins';
+
+type Trend = Constraints['trend'];
+
+export const trendChoices: readonly { readonly value: Trend; readonly label: string }[] = [
+  { value: 'any', label: 'Any' },
+  { value: 'rising', label: 'WOE rises: risk falls along the values' },
+  { value: 'falling', label: 'WOE falls: risk rises along the values' },
+  { value: 'one-peak', label: 'One peak: risk falls, then rises' },
+  { value: 'one-valley', label: 'One valley: risk rises, then falls' },
+];
+
+export const usualConstraints: Constraints = {
+  fineClasses: 100,
+  smallestShare: 0.05,
+  smallestGoods: 20,
+  smallestBads: 20,
+  mostBins: 8,
+  smallestDifference: 0.05,
+  trend: 'any',
+};
+
+const number = (value: number, ...validators: ValidatorFn[]): FormControl<number> =>
+  new FormControl(value, { nonNullable: true, validators: [Validators.required, ...validators] });
+
+/** The share is typed in per cent. */
+export function constraintsForm(from: Constraints = usualConstraints) {
+  return new FormGroup({
+    fineClasses: number(from.fineClasses, Validators.min(2), Validators.max(200)),
+    smallestShare: number(Math.round(from.smallestShare * 1e6) / 1e4, Validators.min(0), Validators.max(50)),
+    smallestGoods: number(from.smallestGoods, Validators.min(0)),
+    smallestBads: number(from.smallestBads, Validators.min(0)),
+    mostBins: number(from.mostBins, Validators.min(1), Validators.max(50)),
+    smallestDifference: number(from.smallestDifference, Validators.min(0), Validators.max(5)),
+    trend: new FormControl<Trend>(from.trend, { nonNullable: true }),
+  });
+}
+export type ConstraintsForm = ReturnType<typeof constraintsForm>;
+
+export const constraintsOf = (form: ConstraintsForm): Constraints => {
+  const values = form.getRawValue();
+  return { ...values, smallestShare: values.smallestShare / 100 };
+};
+
+/** Fields for the constraints of automatic classing. */
+@Component({
+  selector: 'ts-constraints',
+  changeDetection: ChangeDetectionStrategy.OnPush,
+  imports: [ReactiveFormsModule, MatFormFieldModule, MatInputModule, MatSelectModule],
+  template: `
+    <div class="fields" [formGroup]="form()">
+      <mat-form-field>
+        <mat-label>Smallest share of a bin</mat-label>
+        <input matInput type="number" step="0.5" formControlName="smallestShare" />
+        <span matTextSuffix>%</span>
+        <mat-error>Between 0 and 50 %</mat-error>
+      </mat-form-field>
+      <mat-form-field>
+        <mat-label>Most bins</mat-label>
+        <input matInput type="number" step="1" formControlName="mostBins" />
+        <mat-error>Between 1 and 50</mat-error>
+      </mat-form-field>
+      <mat-form-field>
+        <mat-label>Fewest goods in a bin</mat-label>
+        <input matInput type="number" step="1" formControlName="smallestGoods" />
+        <mat-error>0 or more</mat-error>
+      </mat-form-field>
+      <mat-form-field>
+        <mat-label>Fewest bads in a bin</mat-label>
+        <input matInput type="number" step="1" formControlName="smallestBads" />
+        <mat-error>0 or more</mat-error>
+      </mat-form-field>
+      <mat-form-field>
+        <mat-label>Smallest difference of WOE</mat-label>
+        <input matInput type="number" step="0.01" formControlName="smallestDifference" />
+        <mat-error>Between 0 and 5</mat-error>
+      </mat-form-field>
+      @if (withFineClasses()) {
+        <mat-form-field>
+          <mat-label>Fine classes</mat-label>
+          <input matInput type="number" step="1" formControlName="fineClasses" />
+          <mat-error>Between 2 and 200</mat-error>
+        </mat-form-field>
+      }
+      <mat-form-field class="wide">
+        <mat-label>Trend of numeric characteristics</mat-label>
+        <mat-select formControlName="trend">
+          @for (choice of trends; track choice.value) {
+            <mat-option [value]="choice.value">{{ choice.label }}</mat-option>
+          }
+        </mat-select>
+      </mat-form-field>
+    </div>
+  `,
+  styles: `
+    .fields {
+      display: grid;
+      grid-template-columns: repeat(auto-fit, minmax(min(100%, 200px), 1fr));
+      gap: 16px;
+    }
+    .wide {
+      grid-column: 1 / -1;
+    }
+  `,
+})
+export class ConstraintsFields {
+  readonly form = input.required<ConstraintsForm>();
+  readonly withFineClasses = input(true);
+  protected readonly trends = trendChoices;
+}

@@ -1,0 +1,93 @@
+import { ChangeDetectionStrategy, Component, computed, input, output } from '@angular/core';
+import { MatFormFieldModule } from '@angular/material/form-field';
+import { MatSelectModule } from '@angular/material/select';
+import {
+  coarseCount,
+  moveMissing,
+  moveSpecial,
+  moveUnseen,
+  type BenchReading,
+  type Bins,
+  type EditOf,
+  type FineClasses,
+  type Place,
+} from '@tallystone/numeric/bench';
+
+/** Where special codes, missing values and unseen categories go: a bin of their own, or one of the others. */
+@Component({
+  selector: 'ts-places',
+  changeDetection: ChangeDetectionStrategy.OnPush,
+  imports: [MatFormFieldModule, MatSelectModule],
+  template: `
+    @for (row of rows(); track row.label) {
+      <mat-form-field>
+        <mat-label>{{ row.label }}</mat-label>
+        <mat-select [value]="row.place" [disabled]="!editable()" (selectionChange)="row.move($event.value)">
+          <mat-option [value]="row.apart">{{ row.apartLabel }}</mat-option>
+          @for (label of coarse(); track $index) {
+            <mat-option [value]="$index">Joins {{ label }}</mat-option>
+          }
+        </mat-select>
+      </mat-form-field>
+    }
+  `,
+  styles: `
+    :host {
+      display: grid;
+      gap: 14px;
+    }
+  `,
+})
+export class Places {
+  readonly fine = input.required<FineClasses>();
+  readonly bins = input.required<Bins>();
+  readonly reading = input.required<BenchReading>();
+  readonly editable = input(false);
+  readonly edited = output<EditOf<Bins>>();
+
+  protected readonly coarse = computed(() =>
+    this.reading()
+      .bins.slice(0, coarseCount(this.bins()))
+      .map(({ label }) => label),
+  );
+
+  protected readonly rows = computed(() => {
+    const fine = this.fine();
+    const bins = this.bins();
+    const coarse = this.coarse();
+    const own = { apart: 'own' as const, apartLabel: 'A bin of its own' };
+    const name = (place: Place | 'neutral'): string => (typeof place === 'number' ? coarse[place] : '');
+    const rows: {
+      label: string;
+      place: Place | 'neutral';
+      apart: 'own' | 'neutral';
+      apartLabel: string;
+      move: (place: never) => void;
+    }[] = fine.special.map((label, code) => ({
+      label,
+      place: bins.special[code],
+      ...own,
+      move: (place: Place) => this.send(moveSpecial(fine, bins, code, place, name(place))),
+    }));
+    rows.push({
+      label: 'Missing values',
+      place: bins.missing,
+      ...own,
+      move: (place: Place) => this.send(moveMissing(bins, place, name(place))),
+    });
+    if (bins.kind === 'categorical') {
+      rows.push({
+        label: 'Categories that development has not seen',
+        place: bins.unseen,
+        apart: 'neutral',
+        apartLabel: 'Stay neutral: WOE 0',
+        move: (place: 'neutral' | number) => this.send(moveUnseen(bins, place, name(place))),
+      });
+    }
+    return rows;
+  });
+
+  private send(edit: EditOf<Bins> | null): void {
+    if (edit) this.edited.emit(edit);
+  }
+}
