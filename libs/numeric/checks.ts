@@ -3,7 +3,11 @@ import { NumericError } from './errors';
 /** Throws when two arrays that describe the same rows differ in length. */
 export function requireSameLength(name: string, actual: number, expected: number): void {
   if (actual !== expected) {
-    throw new NumericError('length-mismatch', `${name} has ${actual} values where ${expected} are expected.`, { name, actual, expected });
+    throw new NumericError('length-mismatch', `${name} has ${actual} values where ${expected} are expected.`, {
+      name,
+      actual,
+      expected,
+    });
   }
 }
 
@@ -33,7 +37,10 @@ export function requireWeights(name: string, weights: ArrayLike<number>): number
 export function requireOutcome(outcome: ArrayLike<number>): void {
   for (let i = 0; i < outcome.length; i++) {
     if (outcome[i] !== 0 && outcome[i] !== 1) {
-      throw new NumericError('out-of-range', `outcome is ${outcome[i]} at index ${i}; 1 (good) or 0 (bad) is expected.`, { name: 'outcome', index: i });
+      throw new NumericError('out-of-range', `outcome is ${outcome[i]} at index ${i}; 1 (good) or 0 (bad) is expected.`, {
+        name: 'outcome',
+        index: i,
+      });
     }
   }
 }

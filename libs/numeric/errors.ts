@@ -32,7 +32,10 @@ export class ZeroCellError extends NumericError {
     readonly bin: number,
     readonly side: 'goods' | 'bads',
   ) {
-    super('zero-cell', `Bin ${bin} has rows but no ${side}; its weight of evidence is infinite without smoothing.`, { bin, side });
+    super('zero-cell', `Bin ${bin} has rows but no ${side}; its weight of evidence is infinite without smoothing.`, {
+      bin,
+      side,
+    });
     this.name = 'ZeroCellError';
   }
 }

@@ -11,7 +11,9 @@ describe('the example of the README', () => {
     const names = Object.keys(numeric);
     // eslint-disable-next-line @typescript-eslint/no-implied-eval -- the text of the README is the code under test
     const body = new Function(...names, 'console', example);
-    body(...names.map((name) => (numeric as Record<string, unknown>)[name]), { log: (...values: unknown[]) => printed.push(...values) });
+    body(...names.map((name) => (numeric as Record<string, unknown>)[name]), {
+      log: (...values: unknown[]) => printed.push(...values),
+    });
     const [informationValue, points, area] = printed as [number, number[], number];
     const byHand = [
       [0.12, 0.4],

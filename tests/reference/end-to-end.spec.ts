@@ -77,7 +77,11 @@ function fitOf(wanted: E2eFit) {
     {
       columns,
       outcome: trainOutcome,
-      penalty: { mixing: wanted.fit.alpha, standardize: wanted.fit.standardize, lower: limited ? new Float64Array(names.length) : undefined },
+      penalty: {
+        mixing: wanted.fit.alpha,
+        standardize: wanted.fit.standardize,
+        lower: limited ? new Float64Array(names.length) : undefined,
+      },
     },
     wanted.fit.lambda,
     // Tighter than the default: AUC and the counts behind Hosmer-Lemeshow hang on the order of near ties.
@@ -85,7 +89,14 @@ function fitOf(wanted: E2eFit) {
   );
 }
 
-function checkMetrics(eta: Float64Array, own: Uint8Array, wanted: E2eMetrics, development: boolean, factor: number, offset: number): void {
+function checkMetrics(
+  eta: Float64Array,
+  own: Uint8Array,
+  wanted: E2eMetrics,
+  development: boolean,
+  factor: number,
+  offset: number,
+): void {
   const pd = probabilitiesOfBad(eta);
   // AUC, KS and Gini to 1e-9, Brier and logarithmic loss to 1e-7, Hosmer-Lemeshow to 1e-4: as the file states.
   const area = delong(eta, own);
@@ -101,7 +112,9 @@ function checkMetrics(eta: Float64Array, own: Uint8Array, wanted: E2eMetrics, de
   const hl = hosmerLemeshow(pd, own, { groups: 10, development });
   expectNear(hl.statistic, wanted.hl_quantile10.chi2, 1e-4, 'Hosmer-Lemeshow');
   expect(hl.groups).toBe(wanted.hl_quantile10.groups);
-  expect(hl.table.map((group) => [group.rows, group.bads])).toEqual(wanted.hl_quantile10.table_n_obs_exp.map(([n, bads]) => [n, bads]));
+  expect(hl.table.map((group) => [group.rows, group.bads])).toEqual(
+    wanted.hl_quantile10.table_n_obs_exp.map(([n, bads]) => [n, bads]),
+  );
   // The file counts G - 2 everywhere; the p-value for G - 2 is compared, whichever this project takes for the part.
   const twoLess = hosmerLemeshow(pd, own, { groups: 10, development: true });
   expect(twoLess.degreesOfFreedom).toBe(wanted.hl_quantile10.df);
@@ -126,7 +139,12 @@ reference.fits.forEach((wanted, index) => {
     const etaTest = etaOf(fit.intercept, fit.coefficients, test);
     const kept = names.flatMap((_, j) => (fit.coefficients[j] !== 0 ? [j] : []));
     const terms = kept.map((j) => ({ coefficient: fit.coefficients[j], woe: characteristics[j].evidence.woe }));
-    const scaling = { pointsToDouble: reference.pdo, baseScore: reference.score, baseOdds: reference.odds, rounding: 'nearest' } as const;
+    const scaling = {
+      pointsToDouble: reference.pdo,
+      baseScore: reference.score,
+      baseOdds: reference.odds,
+      rounding: 'nearest',
+    } as const;
     const base = scaleToPoints({ ...scaling, intercept: 'base' }, { intercept: fit.intercept, terms });
     const spread = scaleToPoints({ ...scaling, intercept: 'spread' }, { intercept: fit.intercept, terms });
     const scoreTest = etaTest.map((eta) => base.offset + base.factor * eta);
@@ -159,8 +177,10 @@ reference.fits.forEach((wanted, index) => {
       });
     });
 
-    it('has the metrics on the training rows', () => checkMetrics(etaTrain, trainOutcome, wanted.metrics.train, true, base.factor, base.offset));
-    it('has the metrics on the test rows', () => checkMetrics(etaTest, testOutcome, wanted.metrics.test, false, base.factor, base.offset));
+    it('has the metrics on the training rows', () =>
+      checkMetrics(etaTrain, trainOutcome, wanted.metrics.train, true, base.factor, base.offset));
+    it('has the metrics on the test rows', () =>
+      checkMetrics(etaTest, testOutcome, wanted.metrics.test, false, base.factor, base.offset));
 
     it('has the AUC of the rounded score', () => {
       const rounded = (rows: readonly number[]): number[] =>
@@ -186,7 +206,9 @@ reference.fits.forEach((wanted, index) => {
       } else expectNear(index, fixed.psi, 1e-10);
       const cuts = deciles.edges_type7.map((_, d) => quantileType7(scoreTrain, (d + 1) / 10));
       cuts.forEach((cut, d) => expectNear(cut, deciles.edges_type7[d], 1e-4));
-      const byTenth = [scoreTrain, scoreTest].map((scores, k) => countBins(band(scores, cuts), k === 0 ? trainOutcome : testOutcome, 10).rows);
+      const byTenth = [scoreTrain, scoreTest].map(
+        (scores, k) => countBins(band(scores, cuts), k === 0 ? trainOutcome : testOutcome, 10).rows,
+      );
       expect(byTenth.map((rows) => [...rows])).toEqual([deciles.train_counts, deciles.test_counts]);
       expectNear(populationStability(byTenth[0], byTenth[1]) ?? NaN, deciles.psi, 1e-10);
       const approved = test.filter((_, k) => scoreTest[k] >= 600);

@@ -34,10 +34,23 @@ export interface E2eFit {
   readonly factor: number;
   readonly offset: number;
   readonly base_points_A: number;
-  readonly points: Record<string, { readonly labels: string[]; readonly A: number[]; readonly B: number[]; readonly B_rounded: number[] }>;
-  readonly first_test_rows: { readonly row: number; readonly eta: number; readonly score: number; readonly rounded_score: number }[];
+  readonly points: Record<
+    string,
+    { readonly labels: string[]; readonly A: number[]; readonly B: number[]; readonly B_rounded: number[] }
+  >;
+  readonly first_test_rows: {
+    readonly row: number;
+    readonly eta: number;
+    readonly score: number;
+    readonly rounded_score: number;
+  }[];
   readonly metrics: { readonly train: E2eMetrics; readonly test: E2eMetrics };
-  readonly psi_score: { readonly edges: number[]; readonly train_counts: number[]; readonly test_counts: number[]; readonly psi: number | null };
+  readonly psi_score: {
+    readonly edges: number[];
+    readonly train_counts: number[];
+    readonly test_counts: number[];
+    readonly psi: number | null;
+  };
   readonly psi_score_train_deciles: {
     readonly edges_type7: number[];
     readonly train_counts: number[];
@@ -46,7 +59,12 @@ export interface E2eFit {
   };
   readonly test_band_table: { readonly n: number; readonly bad: number }[];
   readonly cutoff_at_600: { readonly approved_test: number; readonly bad_among_approved: number };
-  readonly adverse_impact: { readonly cutoff: number; readonly rate_group: number; readonly rate_reference: number; readonly ratio: number };
+  readonly adverse_impact: {
+    readonly cutoff: number;
+    readonly rate_group: number;
+    readonly rate_reference: number;
+    readonly ratio: number;
+  };
 }
 
 export interface E2e {
@@ -59,12 +77,24 @@ export interface E2e {
     string,
     {
       readonly spec: BinSpec;
-      readonly table: { readonly label: string; readonly good: number; readonly bad: number; readonly woe: number; readonly iv: number; readonly n_test: number }[];
+      readonly table: {
+        readonly label: string;
+        readonly good: number;
+        readonly bad: number;
+        readonly woe: number;
+        readonly iv: number;
+        readonly n_test: number;
+      }[];
       readonly iv: number;
       readonly csi_train_test: number;
     }
   >;
-  readonly paired_delong_test_fit0_vs_fit1: { readonly auc: number[]; readonly cov: number[][]; readonly z: number; readonly p: number };
+  readonly paired_delong_test_fit0_vs_fit1: {
+    readonly auc: number[];
+    readonly cov: number[][];
+    readonly z: number;
+    readonly p: number;
+  };
   readonly vif_train_classical: Record<string, number>;
   readonly fits: E2eFit[];
 }

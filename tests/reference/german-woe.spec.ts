@@ -31,7 +31,10 @@ interface WoeFile {
   readonly convention_variants: {
     readonly duration_edges_12_18_24_36_closed_right: Variable;
     readonly duration_edges_12_18_24_36_closed_left: Variable;
-    readonly purpose_all_levels: Variable & { readonly woe_plus_half_totals_adjusted: number[]; readonly woe_plus_half_totals_not_adjusted: number[] };
+    readonly purpose_all_levels: Variable & {
+      readonly woe_plus_half_totals_adjusted: number[];
+      readonly woe_plus_half_totals_not_adjusted: number[];
+    };
   };
 }
 
@@ -76,8 +79,16 @@ describe('weight of evidence of German credit', () => {
 
   it('edges on observed values: right-closed and left-closed bins differ as they should', () => {
     const edges = [12, 18, 24, 36];
-    check('duration', { type: 'numeric', edges, closed: 'right' }, file.convention_variants.duration_edges_12_18_24_36_closed_right);
-    check('duration', { type: 'numeric', edges, closed: 'left' }, file.convention_variants.duration_edges_12_18_24_36_closed_left);
+    check(
+      'duration',
+      { type: 'numeric', edges, closed: 'right' },
+      file.convention_variants.duration_edges_12_18_24_36_closed_right,
+    );
+    check(
+      'duration',
+      { type: 'numeric', edges, closed: 'left' },
+      file.convention_variants.duration_edges_12_18_24_36_closed_left,
+    );
   });
 
   it('half a count in every cell, with adjusted totals', () => {
@@ -98,7 +109,13 @@ describe('weight of evidence of German credit', () => {
 
 describe('the unpenalised fit on WOE-coded German credit', () => {
   interface Glm {
-    readonly fit: { readonly term: string[]; readonly estimate: number[]; readonly se: number[]; readonly loglik: number; readonly deviance: number };
+    readonly fit: {
+      readonly term: string[];
+      readonly estimate: number[];
+      readonly se: number[];
+      readonly loglik: number;
+      readonly deviance: number;
+    };
     readonly vif_classical: { readonly value: Record<string, number> };
     readonly corr_condition_number: number;
   }
@@ -113,8 +130,12 @@ describe('the unpenalised fit on WOE-coded German credit', () => {
     expect(fit.status).toBe('converged');
     const errors = standardErrors(problem, fit);
     // The variance of "dependents" is 1e-4 of the others, so its coefficient carries the residual times about 1e4: 1e-8 still.
-    [fit.intercept, ...fit.coefficients].forEach((value, j) => expectNear(value, -reference.fit.estimate[j], 1e-8, reference.fit.term[j]));
-    [errors.intercept, ...errors.coefficients].forEach((value, j) => expectNear(value, reference.fit.se[j], 1e-8, reference.fit.term[j]));
+    [fit.intercept, ...fit.coefficients].forEach((value, j) =>
+      expectNear(value, -reference.fit.estimate[j], 1e-8, reference.fit.term[j]),
+    );
+    [errors.intercept, ...errors.coefficients].forEach((value, j) =>
+      expectNear(value, reference.fit.se[j], 1e-8, reference.fit.term[j]),
+    );
     expectNear(fit.deviance, reference.fit.deviance, 1e-9 * reference.fit.deviance);
     expectNear(-fit.deviance / 2, reference.fit.loglik, 1e-8);
   });

@@ -66,7 +66,12 @@ describe('DeLong on the aSAH data', () => {
 describe('Boston mortgage data', () => {
   interface Hmda {
     readonly published: { readonly logit: { readonly coef: number[] } };
-    readonly computed_logit: { readonly coef: number[]; readonly se_model: number[]; readonly loglik: number; readonly deviance: number };
+    readonly computed_logit: {
+      readonly coef: number[];
+      readonly se_model: number[];
+      readonly loglik: number;
+      readonly deviance: number;
+    };
     readonly adverse_impact: {
       readonly counts: Record<'afam' | 'not_afam', { readonly approved: number; readonly denied: number }>;
       readonly approval_rate: Record<'afam' | 'not_afam', number>;
@@ -97,7 +102,8 @@ describe('Boston mortgage data', () => {
   });
 
   it('has the impact ratio and the test of two rates', () => {
-    const count = (member: number, good: number): number => group.reduce((sum, g, i) => sum + (g === member && outcome[i] === good ? 1 : 0), 0);
+    const count = (member: number, good: number): number =>
+      group.reduce((sum, g, i) => sum + (g === member && outcome[i] === good ? 1 : 0), 0);
     const { counts, approval_rate, ratio } = file.adverse_impact;
     expect([count(1, 1), count(1, 0), count(0, 1), count(0, 0)]).toEqual([
       counts.afam.approved,
@@ -120,7 +126,12 @@ describe('Boston mortgage data', () => {
 describe('bootstrap of the unpenalised German credit fit', () => {
   interface Bootstrap {
     readonly optimism_bootstrap: Record<string, number>;
-    readonly stratified_auc_bootstrap: { readonly auc: number; readonly bootstrap_se: number; readonly percentile95: [number, number]; readonly delong_se: number };
+    readonly stratified_auc_bootstrap: {
+      readonly auc: number;
+      readonly bootstrap_se: number;
+      readonly percentile95: [number, number];
+      readonly delong_se: number;
+    };
   }
   // Source: expected/bootstrap_stochastic.json, numpy; Harrell, Regression Modeling Strategies, 2nd ed. 2015, section 5.3. Stochastic on both sides:
   // within four standard errors of the difference.
@@ -130,7 +141,8 @@ describe('bootstrap of the unpenalised German credit fit', () => {
   const outcome = table.goods('bad');
   const problem: FitProblem = { columns, outcome, penalty: { mixing: 1, standardize: true } };
   const fit = fitAt(problem, 0);
-  const etaOf = (f: { intercept: number; coefficients: Float64Array }): Float64Array => linearPredictor(columns, f.intercept, f.coefficients);
+  const etaOf = (f: { intercept: number; coefficients: Float64Array }): Float64Array =>
+    linearPredictor(columns, f.intercept, f.coefficients);
   const eta = etaOf(fit);
 
   it('stratified bootstrap of the AUC', () => {

@@ -31,7 +31,9 @@ describe('penalised fits against glmnet 4.1-6 and an independent Newton solve', 
         // The deviance is not stationary at a penalised optimum, so it carries the coefficients' first-order error.
         expectNear(fit.deviance, point.deviance, 1e-8 * point.deviance, 'deviance');
         expectNear(fit.intercept, sign * point.intercept, 1e-6, `intercept at ${point.lambda}`);
-        point.coef.forEach((value, j) => expectNear(fit.coefficients[j], sign * value, 1e-6, `${reference.x[j]} at ${point.lambda}`));
+        point.coef.forEach((value, j) =>
+          expectNear(fit.coefficients[j], sign * value, 1e-6, `${reference.x[j]} at ${point.lambda}`),
+        );
         point.coef.forEach((value, j) => expect(fit.coefficients[j] === 0).toBe(value === 0));
       });
     });

@@ -32,7 +32,14 @@ export interface ReferenceFit {
 export const referenceFits = expected<{ fits: ReferenceFit[] }>('penalised_logistic_fits.json').fits;
 
 /** Rows of these files may not be passed on, so their fits cannot be made again here. */
-export const needOtherData = ['saheart_a1_std1', 'saheart_a0.5_std1', 'saheart_a0_std1', 'uci_raw23_a1_std1', 'uci_raw23_a0.5_std1', 'uci_raw23_a0_std1'];
+export const needOtherData = [
+  'saheart_a1_std1',
+  'saheart_a0.5_std1',
+  'saheart_a0_std1',
+  'uci_raw23_a1_std1',
+  'uci_raw23_a0.5_std1',
+  'uci_raw23_a0_std1',
+];
 
 const tables = new Map<string, Table>();
 
@@ -63,7 +70,8 @@ export function problemOf(fit: ReferenceFit): { problem: FitProblem; sign: 1 | -
   const fitsGood = fit.y.startsWith('good');
   const event = table.numbers(fitsGood ? 'bad' : fit.y);
   const sign = fitsGood ? 1 : -1;
-  const limit = (value: number | null): Float64Array | undefined => (value === null ? undefined : new Float64Array(columns.length).fill(sign * value));
+  const limit = (value: number | null): Float64Array | undefined =>
+    value === null ? undefined : new Float64Array(columns.length).fill(sign * value);
   const lower = limit(fitsGood ? fit.lower_limits : fit.upper_limits);
   const upper = limit(fitsGood ? fit.upper_limits : fit.lower_limits);
   if (fit.offset && !fit.offset.startsWith('offset_i = -1 * WOE(checking)_i')) throw new Error(`unknown offset: ${fit.offset}`);

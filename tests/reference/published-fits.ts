@@ -39,7 +39,10 @@ const deviation = (values: Float64Array): number => {
 
 export const fitChecks: Record<string, Handler> = {
   /** Good 1950: an unpenalised fit on one unsmoothed WOE column has slope 1 and the prior log odds as intercept. */
-  single_woe_logistic_identity: ({ good, bad }: Record<string, number[]>, wanted: { woe: number[]; model_good: Numbers; fitted_bad_rate: number[] }) => {
+  single_woe_logistic_identity: (
+    { good, bad }: Record<string, number[]>,
+    wanted: { woe: number[]; model_good: Numbers; fitted_bad_rate: number[] },
+  ) => {
     const { woe } = weightOfEvidence(good, bad, { amount: 0, when: 'never' });
     wanted.woe.forEach((value, i) => expectNear(woe[i], value, 1e-12));
     const problem: FitProblem = {
@@ -51,12 +54,17 @@ export const fitChecks: Record<string, Handler> = {
     const fit = fitAt(problem, 0, { tolerance: 1e-13 });
     expectNear(fit.coefficients[0], wanted.model_good.slope, 1e-10);
     expectNear(fit.intercept, wanted.model_good.intercept, 1e-10);
-    wanted.fitted_bad_rate.forEach((rate, i) => expectNear(probabilityOfBad(fit.intercept + fit.coefficients[0] * woe[i]), rate, 1e-10));
+    wanted.fitted_bad_rate.forEach((rate, i) =>
+      expectNear(probabilityOfBad(fit.intercept + fit.coefficients[0] * woe[i]), rate, 1e-10),
+    );
   },
   /** Closed form ln((1 - lambda)/lambda): separated data have a finite penalised optimum and no unpenalised one. */
   l1_two_point_closed_form: ({ lambda_ }: Record<string, number[]>, wanted: { beta_l1: number[] }) => {
     lambda_.forEach((lambda, i) => {
-      for (const fit of [fitAt(twoPoints(1), lambda, { tolerance: 1e-12 }), fitIndependently(twoPoints(1), lambda, { tolerance: 1e-12 })]) {
+      for (const fit of [
+        fitAt(twoPoints(1), lambda, { tolerance: 1e-12 }),
+        fitIndependently(twoPoints(1), lambda, { tolerance: 1e-12 }),
+      ]) {
         expect(fit.status).toBe('converged');
         expectNear(fit.coefficients[0], wanted.beta_l1[i], 1e-10);
         expectNear(fit.intercept, 0, 1e-10);
@@ -66,7 +74,9 @@ export const fitChecks: Record<string, Handler> = {
   },
   /** lambda b = 1/(1 + e^b). */
   ridge_two_point: ({ lambda_ }: Record<string, number[]>, wanted: { beta_l2: number[] }) =>
-    lambda_.forEach((lambda, i) => expectNear(fitAt(twoPoints(0), lambda, { tolerance: 1e-13 }).coefficients[0], wanted.beta_l2[i], 1e-10)),
+    lambda_.forEach((lambda, i) =>
+      expectNear(fitAt(twoPoints(0), lambda, { tolerance: 1e-13 }).coefficients[0], wanted.beta_l2[i], 1e-10),
+    ),
   ridge_duplicate_column: (_: unknown, wanted: Record<string, { intercept: number; coef: number[] }>) => {
     const table = tableOf('data/pima.csv');
     const glu = table.numbers('glu');
@@ -106,10 +116,14 @@ export const fitChecks: Record<string, Handler> = {
     }
   },
   /** Friedman, Hastie and Tibshirani 2010, section 2.5; glmnet 4.1-6 starts there. */
-  lambda_max_german_woe: (_: unknown, wanted: { default_path_first_last: [number, number] } & Record<string, number | string | number[]>) => {
+  lambda_max_german_woe: (
+    _: unknown,
+    wanted: { default_path_first_last: [number, number] } & Record<string, number | string | number[]>,
+  ) => {
     const table = tableOf('data/german_credit_woe.csv');
     const columns = table.columns.filter((name) => name !== 'bad').map((name) => table.numbers(name));
-    const largest = (mixing: number, standardize: boolean): number => largestLambda({ columns, outcome: table.goods('bad'), penalty: { mixing, standardize } });
+    const largest = (mixing: number, standardize: boolean): number =>
+      largestLambda({ columns, outcome: table.goods('bad'), penalty: { mixing, standardize } });
     expectNear(largest(1, true), Number(wanted.lambda_max_alpha1_standardize), 1e-12);
     expectNear(largest(1, false), Number(wanted.lambda_max_alpha1_nostandardize), 1e-12);
     expectNear(largest(0.5, true), Number(wanted.lambda_max_alpha05_standardize), 1e-12);
@@ -119,11 +133,16 @@ export const fitChecks: Record<string, Handler> = {
     expectNear(grid[99], wanted.default_path_first_last[1], 1e-12);
   },
   /** King and Zeng 2001, eq. (7) (formula from memory); signs changed for ln(good:bad). */
-  prior_correction: ({ ybar, tau, b0 }: Numbers, wanted: Numbers) => expectNear(priorCorrectedIntercept(-b0, ybar, tau), -wanted.b0_corrected, 1e-12),
+  prior_correction: ({ ybar, tau, b0 }: Numbers, wanted: Numbers) =>
+    expectNear(priorCorrectedIntercept(-b0, ybar, tau), -wanted.b0_corrected, 1e-12),
   /** Efron and Tibshirani 1993: ideal bootstrap of a mean, all 5^5 resamples enumerated. Monte-Carlo error only, four of its standard errors. */
   exact_bootstrap_mean: ({ x }: { x: number[] }, wanted: { se: number; q025_q975_inverted_cdf: number[] }) => {
     const count = 20_000;
-    const means = overResamples(Uint8Array.from(repeat(1, x.length)), count, (weights) => x.reduce((sum, value, i) => sum + weights[i] * value, 0) / x.length);
+    const means = overResamples(
+      Uint8Array.from(repeat(1, x.length)),
+      count,
+      (weights) => x.reduce((sum, value, i) => sum + weights[i] * value, 0) / x.length,
+    );
     expectNear(mean(means), 4, (4 * wanted.se) / Math.sqrt(count));
     expectNear(deviation(means), wanted.se, (4 * wanted.se) / Math.sqrt(2 * count));
     // The mean moves in steps of 0.2.

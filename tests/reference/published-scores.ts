@@ -39,7 +39,8 @@ import { expectNear } from './reference-files';
 type Numbers = Record<string, number>;
 const never = { amount: 0, when: 'never' } as const;
 const repeat = (value: number, times: number): number[] => Array.from({ length: times }, () => value);
-const eachNear = (actual: ArrayLike<number>, wanted: number[], tolerance: number): void => wanted.forEach((value, i) => expectNear(actual[i], value, tolerance));
+const eachNear = (actual: ArrayLike<number>, wanted: number[], tolerance: number): void =>
+  wanted.forEach((value, i) => expectNear(actual[i], value, tolerance));
 
 /** Chi-square of a 2 x k table against equal rates. */
 function chiSquare(goods: number[], bads: number[]): number {
@@ -68,7 +69,8 @@ const normalScores: Handler = ({ D }: { D: number }, wanted: Numbers) => {
   expectNear(kolmogorovSmirnov(scores, outcome).ks, wanted.ks, 1 / n);
   // Information value from exact normal probabilities in bins of width 0.02: the error of the bins is of the order of their width squared.
   const edges = Array.from({ length: 601 }, (_, k) => -5 + 0.02 * k);
-  const mass = (shift: number): number[] => edges.slice(1).map((edge, k) => normalCdf(edge - shift) - normalCdf(edges[k] - shift));
+  const mass = (shift: number): number[] =>
+    edges.slice(1).map((edge, k) => normalCdf(edge - shift) - normalCdf(edges[k] - shift));
   expectNear(weightOfEvidence(mass(D), mass(0), never).informationValue, wanted.information_value, 1e-3);
 };
 
@@ -86,16 +88,27 @@ const interval: Handler = ({ x, n, conf }: Numbers, wanted: Record<string, numbe
   eachNear([exact.lower, exact.upper], wanted.published_clopper_pearson, 5e-5);
 };
 
-const scaling: Handler = ({ score0, odds0, pdo }: Numbers, wanted: { factor: number; offset: number; score_at_odds?: Numbers }) => {
-  const points = scaleToPoints({ pointsToDouble: pdo, baseScore: score0, baseOdds: odds0, intercept: 'base', rounding: 'nearest' }, { intercept: 0, terms: [] });
+const scaling: Handler = (
+  { score0, odds0, pdo }: Numbers,
+  wanted: { factor: number; offset: number; score_at_odds?: Numbers },
+) => {
+  const points = scaleToPoints(
+    { pointsToDouble: pdo, baseScore: score0, baseOdds: odds0, intercept: 'base', rounding: 'nearest' },
+    { intercept: 0, terms: [] },
+  );
   expectNear(points.factor, wanted.factor, 1e-10);
   expectNear(points.offset, wanted.offset, 1e-10);
-  Object.entries(wanted.score_at_odds ?? {}).forEach(([odds, score]) => expectNear(points.offset + points.factor * Math.log(Number(odds)), score, 1e-10));
+  Object.entries(wanted.score_at_odds ?? {}).forEach(([odds, score]) =>
+    expectNear(points.offset + points.factor * Math.log(Number(odds)), score, 1e-10),
+  );
 };
 
 export const scoreChecks: Record<string, Handler> = {
   /** Siddiqi 2006, chapter 6: printed figures from memory, recomputed from the inputs. */
-  woe_iv_age_table: ({ good, bad }: Record<string, number[]>, wanted: { woe: number[]; iv: number; published_woe_x100: number[]; published_iv: number }) => {
+  woe_iv_age_table: (
+    { good, bad }: Record<string, number[]>,
+    wanted: { woe: number[]; iv: number; published_woe_x100: number[]; published_iv: number },
+  ) => {
     const own = weightOfEvidence(good, bad, never);
     eachNear(own.woe, wanted.woe, 1e-12);
     expectNear(own.informationValue, wanted.iv, 1e-12);
@@ -136,7 +149,9 @@ export const scoreChecks: Record<string, Handler> = {
   /** Hanley and McNeil 1982, Tables I and II: printed figures from memory, recomputed. */
   hanley_mcneil_1982: (inputs: Record<string, number[]>, wanted: Numbers) => {
     // Ratings rise with abnormality: the abnormal take the place of the goods.
-    const scores = [inputs.rating_counts_normal, inputs.rating_counts_abnormal].flatMap((counts) => counts.flatMap((n, rating) => repeat(rating, n)));
+    const scores = [inputs.rating_counts_normal, inputs.rating_counts_abnormal].flatMap((counts) =>
+      counts.flatMap((n, rating) => repeat(rating, n)),
+    );
     const outcome = [...repeat(0, 58), ...repeat(1, 51)];
     const own = delong(scores, outcome);
     expectNear(own.auc, wanted.auc, 1e-10);
@@ -154,10 +169,15 @@ export const scoreChecks: Record<string, Handler> = {
   /** Standard tables (Pearson and Hartley); digits by scipy. */
   chi2_quantiles: ({ p, df }: { p: number; df: number[] }, wanted: { q: number[]; published: Numbers }) => {
     df.forEach((degrees, i) => expectNear(chiSquareQuantile(p, degrees), wanted.q[i], 1e-9));
-    Object.entries(wanted.published).forEach(([degrees, value]) => expectNear(chiSquareQuantile(p, Number(degrees)), value, 5e-4 + 1e-9));
+    Object.entries(wanted.published).forEach(([degrees, value]) =>
+      expectNear(chiSquareQuantile(p, Number(degrees)), value, 5e-4 + 1e-9),
+    );
   },
   /** Miller 1956. The limit law is what is used here; the exact small-sample values lie below it by the known margin. */
-  ks_critical_one_sample: ({ alpha, n }: Record<string, number[]>, wanted: { asymptotic: number[]; first_term: number[]; exact_n10: number; exact_n20: number }) => {
+  ks_critical_one_sample: (
+    { alpha, n }: Record<string, number[]>,
+    wanted: { asymptotic: number[]; first_term: number[]; exact_n10: number; exact_n20: number },
+  ) => {
     eachNear(alpha.map(kolmogorovCriticalValue), wanted.asymptotic, 1e-5);
     eachNear(
       alpha.map((a) => Math.sqrt(-Math.log(a / 2) / 2)),
@@ -195,7 +215,8 @@ export const scoreChecks: Record<string, Handler> = {
     const equal = repeat(1, B);
     let sum = 0;
     const runs = 2000;
-    for (let r = 0; r < runs; r++) sum += populationStability(multinomial(random, 1000, equal), multinomial(random, 1000, equal)) ?? NaN;
+    for (let r = 0; r < runs; r++)
+      sum += populationStability(multinomial(random, 1000, equal), multinomial(random, 1000, equal)) ?? NaN;
     expectNear(sum / runs, 0.018, (4 * 0.0085) / Math.sqrt(runs));
   },
   /** Good 1950: points to double the odds of 10 log10 2 are decibans. */
@@ -207,7 +228,11 @@ export const scoreChecks: Record<string, Handler> = {
   /** Basel Committee Working Paper 14, 2005; integers by scipy. */
   binomial_test_critical: (_: unknown, wanted: { table: Numbers[] }) => {
     wanted.table.forEach(({ N, PD, k_reject_95, k_reject_99, k_reject_999, normal_approx_95 }) => {
-      expect([0.95, 0.99, 0.999].map((level) => binomialCriticalCount(N, PD, level))).toEqual([k_reject_95, k_reject_99, k_reject_999]);
+      expect([0.95, 0.99, 0.999].map((level) => binomialCriticalCount(N, PD, level))).toEqual([
+        k_reject_95,
+        k_reject_99,
+        k_reject_999,
+      ]);
       expectNear(binomialCriticalApproximation(N, PD, 0.95), normal_approx_95, 1e-9);
     });
   },
@@ -219,7 +244,8 @@ export const scoreChecks: Record<string, Handler> = {
     });
   },
   /** European Central Bank 2019, 2.5.3 (formula from memory); numbers by scipy. */
-  jeffreys_test: (_: unknown, wanted: { table: Numbers[] }) => wanted.table.forEach(({ N, D, PD, p_value }) => expectNear(jeffreysTail(D, N, PD), p_value, 1e-12)),
+  jeffreys_test: (_: unknown, wanted: { table: Numbers[] }) =>
+    wanted.table.forEach(({ N, D, PD, p_value }) => expectNear(jeffreysTail(D, N, PD), p_value, 1e-12)),
   /** European Central Bank 2019, 2.5.5 (formula from memory). */
   auc_change_test: ({ auc_initial, auc_current, var_current }: Numbers, wanted: Numbers) => {
     const own = aucChangeTest(auc_initial, auc_current, Math.sqrt(var_current));
@@ -240,7 +266,11 @@ export const scoreChecks: Record<string, Handler> = {
     const pd = forecast.flatMap((value, g) => repeat(value, n[g]));
     const outcome = n.flatMap((rows, g) => [...repeat(0, events[g]), ...repeat(1, rows - events[g])]);
     const own = murphyDecomposition(pd, outcome);
-    eachNear([own.brier, own.reliability, own.resolution, own.uncertainty], [wanted.brier, wanted.reliability, wanted.resolution, wanted.uncertainty], 1e-12);
+    eachNear(
+      [own.brier, own.reliability, own.resolution, own.uncertainty],
+      [wanted.brier, wanted.reliability, wanted.resolution, wanted.uncertainty],
+      1e-12,
+    );
     expectNear(own.skill, wanted.brier_skill, 1e-12);
     expectNear(brier(pd, outcome), wanted.brier, 1e-12);
     expectNear(spiegelhalter(pd, outcome).z, wanted.spiegelhalter_z, 1e-12);
@@ -248,7 +278,10 @@ export const scoreChecks: Record<string, Handler> = {
     expectNear(chi, wanted.hl_chi2, 1e-12);
   },
   /** 44 FR 11996 (1979), question 12; read in a public summary. */
-  four_fifths: ({ selection_rates }: { selection_rates: Numbers }, wanted: { ratios: Numbers; flag_below_0_8: Record<string, boolean> }) => {
+  four_fifths: (
+    { selection_rates }: { selection_rates: Numbers },
+    wanted: { ratios: Numbers; flag_below_0_8: Record<string, boolean> },
+  ) => {
     const names = Object.keys(selection_rates);
     const own = impactRatios(names.map((name) => selection_rates[name]));
     Object.entries(wanted.ratios).forEach(([name, ratio]) => expectNear(own[names.indexOf(name)].ratio, ratio, 1e-12));
@@ -257,7 +290,10 @@ export const scoreChecks: Record<string, Handler> = {
   /** Engelmann, Hayden and Tasche 2003. */
   auc_gini_cap_identity: ({ bad_scores, good_scores }: Record<string, number[]>, wanted: Numbers) => {
     // The file's scores rise with risk.
-    const own = auc([...bad_scores, ...good_scores].map((s) => -s), [...repeat(0, bad_scores.length), ...repeat(1, good_scores.length)]);
+    const own = auc(
+      [...bad_scores, ...good_scores].map((s) => -s),
+      [...repeat(0, bad_scores.length), ...repeat(1, good_scores.length)],
+    );
     expectNear(own, wanted.auc, 1e-14);
     expectNear(gini(own), wanted.gini, 1e-14);
   },

@@ -1,5 +1,14 @@
 import { describe, expect, it } from 'vitest';
-import { auc, fitAt, hosmerLemeshow, linearPredictor, nullDeviance, probabilitiesOfBad, standardErrors, type FitProblem } from '@tallystone/numeric';
+import {
+  auc,
+  fitAt,
+  hosmerLemeshow,
+  linearPredictor,
+  nullDeviance,
+  probabilitiesOfBad,
+  standardErrors,
+  type FitProblem,
+} from '@tallystone/numeric';
 import { tableOf } from './penalised-fits';
 import { expectNear, expected } from './reference-files';
 
@@ -17,7 +26,13 @@ interface PublishedFit {
   readonly published_se: number[] | null;
   readonly published_loglik: number | null;
   readonly computed_R_glm: Computed;
-  readonly computed_hosmer_lemeshow?: { readonly n: number[]; readonly obs: number[]; readonly exp: number[]; readonly chi2: number; readonly df: number };
+  readonly computed_hosmer_lemeshow?: {
+    readonly n: number[];
+    readonly obs: number[];
+    readonly exp: number[];
+    readonly chi2: number;
+    readonly df: number;
+  };
   readonly computed_auc?: number;
 }
 

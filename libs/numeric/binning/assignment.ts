@@ -26,7 +26,8 @@ export function requireEdges(edges: readonly number[]): void {
   if (edges.length > 255) throw new NumericError('out-of-range', `${edges.length} edges; 255 is the most.`, { name: 'edges' });
   edges.forEach((edge, i) => {
     if (!Number.isFinite(edge)) throw new NumericError('not-a-number', `Edge ${i} is ${edge}.`, { name: 'edges', index: i });
-    if (i > 0 && edge <= edges[i - 1]) throw new NumericError('out-of-range', `Edge ${i} is not above the one before.`, { name: 'edges', index: i });
+    if (i > 0 && edge <= edges[i - 1])
+      throw new NumericError('out-of-range', `Edge ${i} is not above the one before.`, { name: 'edges', index: i });
   });
 }
 
@@ -57,13 +58,19 @@ export interface BinCounts {
  * @param bins bin of each row, below `count`
  * @param outcome 1 good, 0 bad
  */
-export function countBins(bins: ArrayLike<number>, outcome: ArrayLike<number>, count: number, weights?: ArrayLike<number>): BinCounts {
+export function countBins(
+  bins: ArrayLike<number>,
+  outcome: ArrayLike<number>,
+  count: number,
+  weights?: ArrayLike<number>,
+): BinCounts {
   const rows = new Float64Array(count);
   const goods = new Float64Array(count);
   const bads = new Float64Array(count);
   for (let i = 0; i < bins.length; i++) {
     const bin = bins[i];
-    if (!(bin < count)) throw new NumericError('out-of-range', `Row ${i} lies in bin ${bin} of ${count}.`, { name: 'bins', index: i });
+    if (!(bin < count))
+      throw new NumericError('out-of-range', `Row ${i} lies in bin ${bin} of ${count}.`, { name: 'bins', index: i });
     const weight = weights ? weights[i] : 1;
     rows[bin] += 1;
     if (outcome[i] === 1) goods[bin] += weight;

@@ -26,7 +26,10 @@ describe('weightOfEvidence', () => {
     expect(woe[0]).toBeCloseTo(Math.log(80.5 / 101 / (0.5 / 41)), 14);
     // No rows: WOE 0 and not in K.
     expect(woe[2]).toBe(0);
-    expect(weightOfEvidence([80, 20, 0], [10, 30, 0], always).woe[0]).toBeCloseTo(weightOfEvidence([80, 20], [10, 30], always).woe[0], 14);
+    expect(weightOfEvidence([80, 20, 0], [10, 30, 0], always).woe[0]).toBeCloseTo(
+      weightOfEvidence([80, 20], [10, 30], always).woe[0],
+      14,
+    );
   });
 
   it('names the bin and the side of a zero cell', () => {
@@ -50,23 +53,27 @@ describe('weightOfEvidence', () => {
   it('does not change with the scale of the weights, and mirrors with good and bad', () => {
     const cell = fc.integer({ min: 1, max: 1000 });
     fc.assert(
-      fc.property(fc.array(fc.tuple(cell, cell), { minLength: 1, maxLength: 12 }), fc.double({ min: 0.01, max: 100, noNaN: true }), (bins, scale) => {
-        const goods = bins.map(([g]) => g);
-        const bads = bins.map(([, b]) => b);
-        const own = weightOfEvidence(goods, bads, never);
-        const scaled = weightOfEvidence(
-          goods.map((g) => g * scale),
-          bads,
-          never,
-        );
-        const mirrored = weightOfEvidence(bads, goods, never);
-        own.woe.forEach((value, i) => {
-          expect(scaled.woe[i]).toBeCloseTo(value, 10);
-          expect(mirrored.woe[i]).toBeCloseTo(-value, 10);
-        });
-        expect(own.informationValue).toBeGreaterThanOrEqual(0);
-        expect(mirrored.informationValue).toBeCloseTo(own.informationValue, 10);
-      }),
+      fc.property(
+        fc.array(fc.tuple(cell, cell), { minLength: 1, maxLength: 12 }),
+        fc.double({ min: 0.01, max: 100, noNaN: true }),
+        (bins, scale) => {
+          const goods = bins.map(([g]) => g);
+          const bads = bins.map(([, b]) => b);
+          const own = weightOfEvidence(goods, bads, never);
+          const scaled = weightOfEvidence(
+            goods.map((g) => g * scale),
+            bads,
+            never,
+          );
+          const mirrored = weightOfEvidence(bads, goods, never);
+          own.woe.forEach((value, i) => {
+            expect(scaled.woe[i]).toBeCloseTo(value, 10);
+            expect(mirrored.woe[i]).toBeCloseTo(-value, 10);
+          });
+          expect(own.informationValue).toBeGreaterThanOrEqual(0);
+          expect(mirrored.informationValue).toBeCloseTo(own.informationValue, 10);
+        },
+      ),
     );
   });
 });
@@ -81,15 +88,19 @@ describe('assignment', () => {
 
   it('is the number of edges passed, for any edges', () => {
     fc.assert(
-      fc.property(fc.uniqueArray(fc.integer({ min: -50, max: 50 }), { maxLength: 20 }), fc.array(fc.integer({ min: -60, max: 60 })), (raw, values) => {
-        const edges = raw.sort((a, b) => a - b);
-        const left = assignBins(Float64Array.from(values), edges, 'left');
-        const right = assignBins(Float64Array.from(values), edges, 'right');
-        values.forEach((x, i) => {
-          expect(left[i]).toBe(edges.filter((edge) => edge <= x).length);
-          expect(right[i]).toBe(edges.filter((edge) => edge < x).length);
-        });
-      }),
+      fc.property(
+        fc.uniqueArray(fc.integer({ min: -50, max: 50 }), { maxLength: 20 }),
+        fc.array(fc.integer({ min: -60, max: 60 })),
+        (raw, values) => {
+          const edges = raw.sort((a, b) => a - b);
+          const left = assignBins(Float64Array.from(values), edges, 'left');
+          const right = assignBins(Float64Array.from(values), edges, 'right');
+          values.forEach((x, i) => {
+            expect(left[i]).toBe(edges.filter((edge) => edge <= x).length);
+            expect(right[i]).toBe(edges.filter((edge) => edge < x).length);
+          });
+        },
+      ),
     );
   });
 
@@ -128,18 +139,22 @@ describe('fineEdges', () => {
 
   it('separates as the values do, with classes of nearly equal size', () => {
     fc.assert(
-      fc.property(fc.array(fc.double({ min: -1e6, max: 1e6, noNaN: true }), { minLength: 1, maxLength: 300 }), fc.integer({ min: 1, max: 40 }), (values, count) => {
-        const edges = fineEdges(Float64Array.from(values), count);
-        expect(edges.length).toBeLessThan(count);
-        edges.forEach((edge, i) => expect(i === 0 || edge > edges[i - 1]).toBe(true));
-        const bins = assignBins(Float64Array.from(values), edges, 'left');
-        // Every class has a value in it: an edge that separates nothing would leave one empty.
-        expect(new Set(bins).size).toBe(edges.length + 1);
-        if (new Set(values).size === values.length && values.length >= 2 * count) {
-          const sizes = countBins(bins, new Uint8Array(values.length), edges.length + 1).rows;
-          sizes.forEach((size) => expect(Math.abs(size - values.length / count)).toBeLessThanOrEqual(2));
-        }
-      }),
+      fc.property(
+        fc.array(fc.double({ min: -1e6, max: 1e6, noNaN: true }), { minLength: 1, maxLength: 300 }),
+        fc.integer({ min: 1, max: 40 }),
+        (values, count) => {
+          const edges = fineEdges(Float64Array.from(values), count);
+          expect(edges.length).toBeLessThan(count);
+          edges.forEach((edge, i) => expect(i === 0 || edge > edges[i - 1]).toBe(true));
+          const bins = assignBins(Float64Array.from(values), edges, 'left');
+          // Every class has a value in it: an edge that separates nothing would leave one empty.
+          expect(new Set(bins).size).toBe(edges.length + 1);
+          if (new Set(values).size === values.length && values.length >= 2 * count) {
+            const sizes = countBins(bins, new Uint8Array(values.length), edges.length + 1).rows;
+            sizes.forEach((size) => expect(Math.abs(size - values.length / count)).toBeLessThanOrEqual(2));
+          }
+        },
+      ),
       { numRuns: 200 },
     );
   });

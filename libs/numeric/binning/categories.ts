@@ -26,7 +26,8 @@ export function classCategories(
   categories.forEach(({ goods, bads, rows }, i) => requireFinite(`category ${i}`, [goods, bads, rows]));
   if (categories.length === 0) return { groups: [], informationValue: 0 };
   const allRows = categories.reduce((sum, { rows }) => sum + rows, 0);
-  const isRare = ({ goods, bads, rows }: CategoryCounts): boolean => goods === 0 || bads === 0 || rows < RARE_PART * constraints.smallestShare * allRows;
+  const isRare = ({ goods, bads, rows }: CategoryCounts): boolean =>
+    goods === 0 || bads === 0 || rows < RARE_PART * constraints.smallestShare * allRows;
   const rare = categories.flatMap((category, i) => (isRare(category) ? [i] : []));
   const units: number[][] = categories.flatMap((category, i) => (isRare(category) ? [] : [[i]]));
   if (rare.length > 0) units.push(rare);
@@ -38,7 +39,11 @@ export function classCategories(
   }));
   const rate = ({ goods, bads }: { goods: number; bads: number }): number => (goods + bads > 0 ? bads / (goods + bads) : 0);
   counted.sort((a, b) => rate(a) - rate(b) || a.members[0] - b.members[0]);
-  const fine = { goods: counted.map(({ goods }) => goods), bads: counted.map(({ bads }) => bads), rows: counted.map(({ rows }) => rows) };
+  const fine = {
+    goods: counted.map(({ goods }) => goods),
+    bads: counted.map(({ bads }) => bads),
+    rows: counted.map(({ rows }) => rows),
+  };
   // The order is by rate already, so a trend over it has no meaning of its own.
   const { cuts, informationValue } = classNumeric(fine, { ...constraints, trend: 'any' }, totals);
   const ends = [...cuts, counted.length];

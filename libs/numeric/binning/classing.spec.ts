@@ -4,7 +4,14 @@ import { classCategories } from './categories';
 import { classNumeric, trendOf, type Constraints } from './classing';
 import { weightOfEvidence } from './weight-of-evidence';
 
-const open: Constraints = { smallestShare: 0, smallestGoods: 0, smallestBads: 0, mostBins: 8, smallestDifference: 0, trend: 'any' };
+const open: Constraints = {
+  smallestShare: 0,
+  smallestGoods: 0,
+  smallestBads: 0,
+  mostBins: 8,
+  smallestDifference: 0,
+  trend: 'any',
+};
 
 interface Fine {
   goods: number[];
@@ -14,7 +21,8 @@ interface Fine {
 
 function merged(fine: Fine, cuts: readonly number[]) {
   const ends = [...cuts, fine.rows.length];
-  const sums = (counts: number[]): number[] => ends.map((end, b) => counts.slice(b === 0 ? 0 : ends[b - 1], end).reduce((x, y) => x + y, 0));
+  const sums = (counts: number[]): number[] =>
+    ends.map((end, b) => counts.slice(b === 0 ? 0 : ends[b - 1], end).reduce((x, y) => x + y, 0));
   return { goods: sums(fine.goods), bads: sums(fine.bads), rows: sums(fine.rows) };
 }
 
@@ -62,7 +70,7 @@ const constraintSets = fc.record({
   smallestBads: fc.constantFrom(0, 5, 15),
   mostBins: fc.integer({ min: 1, max: 8 }),
   smallestDifference: fc.constantFrom(0, 0.05, 0.4),
-  trend: fc.constantFrom('any', 'rising', 'falling', 'one-peak', 'one-valley') as fc.Arbitrary<Constraints['trend']>,
+  trend: fc.constantFrom<Constraints['trend']>('any', 'rising', 'falling', 'one-peak', 'one-valley'),
 });
 
 describe('classNumeric', () => {
@@ -100,14 +108,28 @@ describe('classNumeric', () => {
     const goods = Array.from({ length: 100 }, (_, i) => 150 + Math.round(60 * Math.sin(i / 12)));
     const bads = Array.from({ length: 100 }, (_, i) => 40 + Math.round(25 * Math.cos(i / 30)));
     const rows = goods.map((g, i) => g + bads[i]);
-    const constraints: Constraints = { smallestShare: 0.05, smallestGoods: 20, smallestBads: 20, mostBins: 8, smallestDifference: 0.05, trend: 'rising' };
+    const constraints: Constraints = {
+      smallestShare: 0.05,
+      smallestGoods: 20,
+      smallestBads: 20,
+      mostBins: 8,
+      smallestDifference: 0.05,
+      trend: 'rising',
+    };
     const { cuts, trend } = classNumeric({ goods, bads, rows }, constraints);
     expect(trend).toBe('rising');
     expect(allowed({ goods, bads, rows }, cuts, constraints)).toBe(true);
   });
 
   it('names trends', () => {
-    expect([[1], [1, 2], [2, 2, 1], [1, 3, 2], [2, 1, 3], [1, 3, 2, 4]].map(trendOf)).toEqual(['flat', 'rising', 'falling', 'one-peak', 'one-valley', 'mixed']);
+    expect([[1], [1, 2], [2, 2, 1], [1, 3, 2], [2, 1, 3], [1, 3, 2, 4]].map(trendOf)).toEqual([
+      'flat',
+      'rising',
+      'falling',
+      'one-peak',
+      'one-valley',
+      'mixed',
+    ]);
   });
 });
 
@@ -118,7 +140,9 @@ describe('classCategories', () => {
     const categories = [category(60, 40), category(95, 5), category(1, 0), category(90, 12), category(0, 2), category(50, 50)];
     const { groups } = classCategories(categories, { ...open, smallestShare: 0.1, mostBins: 3, smallestDifference: 0.1 });
     expect(groups.flat().sort()).toEqual([0, 1, 2, 3, 4, 5]);
-    const rates = groups.map((group) => group.reduce((sum, i) => sum + categories[i].bads, 0) / group.reduce((sum, i) => sum + categories[i].rows, 0));
+    const rates = groups.map(
+      (group) => group.reduce((sum, i) => sum + categories[i].bads, 0) / group.reduce((sum, i) => sum + categories[i].rows, 0),
+    );
     rates.slice(1).forEach((rate, g) => expect(rate).toBeGreaterThan(rates[g]));
     expect(groups.find((group) => group.includes(2))).toContain(4);
   });

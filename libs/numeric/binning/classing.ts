@@ -41,7 +41,11 @@ export interface NumericClassing {
  * @example classNumeric({ goods: [10, 20, 60], bads: [20, 18, 10], rows: [30, 38, 70] }, constraints).cuts // [2]
  * Source: R. Bellman, Dynamic Programming, 1957; W. D. Fisher, On grouping for maximum homogeneity, JASA 53, 1958 (contiguous optimal grouping).
  */
-export function classNumeric(fine: FineCounts, constraints: Constraints, totals?: { goods: number; bads: number }): NumericClassing {
+export function classNumeric(
+  fine: FineCounts,
+  constraints: Constraints,
+  totals?: { goods: number; bads: number },
+): NumericClassing {
   const table = new BinTable(fine, constraints, totals);
   const cuts = bestCuts(table, constraints);
   const ends = [...cuts, table.classes];
@@ -83,8 +87,17 @@ class BinTable {
     private readonly constraints: Constraints,
     totals?: { goods: number; bads: number },
   ) {
-    requireFinite('smallestShare', [constraints.smallestShare, constraints.smallestGoods, constraints.smallestBads, constraints.smallestDifference]);
-    requireThat(Number.isInteger(constraints.mostBins) && constraints.mostBins >= 1, 'mostBins', 'mostBins is a whole number of at least 1.');
+    requireFinite('smallestShare', [
+      constraints.smallestShare,
+      constraints.smallestGoods,
+      constraints.smallestBads,
+      constraints.smallestDifference,
+    ]);
+    requireThat(
+      Number.isInteger(constraints.mostBins) && constraints.mostBins >= 1,
+      'mostBins',
+      'mostBins is a whole number of at least 1.',
+    );
     this.classes = fine.rows.length;
     if (this.classes === 0) throw new NumericError('no-rows', 'There is no fine class.', { name: 'fine' });
     this.goods = cumulated('goods', fine.goods, this.classes);
@@ -124,7 +137,9 @@ class BinTable {
 
 function cumulated(name: string, counts: ArrayLike<number>, classes: number): Float64Array {
   if (counts.length !== classes) {
-    throw new NumericError('length-mismatch', `${name} has ${counts.length} fine classes where ${classes} are expected.`, { name });
+    throw new NumericError('length-mismatch', `${name} has ${counts.length} fine classes where ${classes} are expected.`, {
+      name,
+    });
   }
   requireFinite(name, counts);
   const sums = new Float64Array(classes + 1);
@@ -165,7 +180,8 @@ function bestCuts(table: BinTable, constraints: Constraints): number[] {
   // Bins by their end, for the number of bins counted so far.
   let layer: State[][] = Array.from({ length: classes + 1 }, () => []);
   for (let end = 1; end <= classes; end++) {
-    if (table.allowed(0, end)) layer[end].push({ start: 0, end, woe: table.woe(0, end), part: 0, value: table.value(0, end), previous: null });
+    if (table.allowed(0, end))
+      layer[end].push({ start: 0, end, woe: table.woe(0, end), part: 0, value: table.value(0, end), previous: null });
   }
   let best: State | null = layer[classes][0] ?? null;
   for (let bins = 2; bins <= constraints.mostBins; bins++) {

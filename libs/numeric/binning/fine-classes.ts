@@ -9,7 +9,11 @@ import { NumericError } from '../errors';
  * @example fineEdges(Float64Array.of(1.237, 1.81, 2.46, 9.9), 4) // [1.8, 2, 9]
  */
 export function fineEdges(values: Float64Array, count: number): number[] {
-  requireThat(Number.isInteger(count) && count >= 1 && count <= 250, 'count', 'the number of fine classes lies between 1 and 250.');
+  requireThat(
+    Number.isInteger(count) && count >= 1 && count <= 250,
+    'count',
+    'the number of fine classes lies between 1 and 250.',
+  );
   if (values.length === 0) throw new NumericError('no-rows', 'There is no known value to class.', { name: 'values' });
   requireFinite('values', values);
   const sorted = values.slice().sort();
@@ -38,7 +42,9 @@ export function shortestBetween(below: number, value: number): number {
   const largest = Math.max(Math.abs(below), Math.abs(value));
   const top = Math.floor(Math.log10(largest)) + 1;
   for (let exponent = top; exponent >= top - 17; exponent--) {
-    const multiple = Math.floor(Number(`${value}e${-exponent}`.replace(/e([+-]?\d+)e(-?\d+)/, (_, a, b) => `e${Number(a) + Number(b)}`)));
+    const multiple = Math.floor(
+      Number(`${value}e${-exponent}`.replace(/e([+-]?\d+)e(-?\d+)/, (_, a, b) => `e${Number(a) + Number(b)}`)),
+    );
     const candidate = Number(`${multiple}e${exponent}`);
     if (candidate > below && candidate <= value) return candidate;
   }

@@ -35,7 +35,11 @@ export function weightOfEvidence(goods: ArrayLike<number>, bads: ArrayLike<numbe
   requireSameLength('bads', bads.length, bins);
   requireFinite('goods', goods);
   requireFinite('bads', bads);
-  requireThat(Number.isFinite(smoothing.amount) && smoothing.amount >= 0, 'smoothing', 'smoothing must be a number of at least 0.');
+  requireThat(
+    Number.isFinite(smoothing.amount) && smoothing.amount >= 0,
+    'smoothing',
+    'smoothing must be a number of at least 0.',
+  );
   let totalGoods = 0;
   let totalBads = 0;
   let filled = 0;

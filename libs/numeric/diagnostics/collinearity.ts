@@ -68,12 +68,17 @@ export function varianceInflation(columns: readonly Float64Array[], weights?: Fl
  * Columns without variance are left out. Exact collinearity gives Infinity.
  * Source: as `varianceInflation`, chapter 3, for centred columns.
  */
-export function conditionIndex(columns: readonly Float64Array[], weights?: Float64Array): { eigenvalues: number[]; indices: number[]; largest: number } {
+export function conditionIndex(
+  columns: readonly Float64Array[],
+  weights?: Float64Array,
+): { eigenvalues: number[]; indices: number[]; largest: number } {
   const full = correlation(columns, weights);
   const varying = columns.flatMap((_, j) => (Number.isNaN(full[j][j]) ? [] : [j]));
   if (varying.length === 0) return { eigenvalues: [], indices: [], largest: NaN };
   const matrix = new Matrix(varying.map((j) => varying.map((k) => full[j][k])));
-  const eigenvalues = new EigenvalueDecomposition(matrix, { assumeSymmetric: true }).realEigenvalues.slice().sort((a, b) => b - a);
+  const eigenvalues = new EigenvalueDecomposition(matrix, { assumeSymmetric: true }).realEigenvalues
+    .slice()
+    .sort((a, b) => b - a);
   const indices = eigenvalues.map((value) => (value > COLLINEAR ? Math.sqrt(eigenvalues[0] / value) : Infinity));
   return { eigenvalues, indices, largest: indices[indices.length - 1] };
 }
@@ -90,14 +95,16 @@ export function standardErrors(
 ): { intercept: number; coefficients: Float64Array; covariance: number[][] } {
   requireProblem(problem);
   const design = new Design(problem.columns, problem.outcome.length, problem.weights);
-  if (design.used.length < problem.columns.length) throw new NumericError('singular', 'A column has no variance.', { name: 'columns' });
+  if (design.used.length < problem.columns.length)
+    throw new NumericError('singular', 'A column has no variance.', { name: 'columns' });
   const eta = linearPredictor(problem.columns, fit.intercept, fit.coefficients, problem.offset);
   const root = new Float64Array(design.rows);
   rootCurvature(eta, design.share, root);
   const gram = design.gram(root, design.used);
   const size = design.used.length + 1;
   const information = new Matrix(Array.from({ length: size }, (_, a) => Array.from(gram.subarray(a * size, (a + 1) * size))));
-  if (!new CholeskyDecomposition(information).isPositiveDefinite()) throw new NumericError('singular', 'The columns are collinear.', { name: 'columns' });
+  if (!new CholeskyDecomposition(information).isPositiveDefinite())
+    throw new NumericError('singular', 'The columns are collinear.', { name: 'columns' });
   const scaled = inverse(information).div(design.totalWeight);
   // Back from centred, scaled columns: beta_j = t_j / s_j, intercept = centred intercept - sum_j beta_j centre_j.
   const back = Matrix.eye(size, size);

@@ -37,7 +37,9 @@ describe('collinearity', () => {
     const weights = Float64Array.from({ length: 300 }, (_, i) => i % 3);
     const rows = Array.from(weights).flatMap((w, i) => Array.from({ length: w }, () => i));
     const repeated = problem.columns.map((column) => Float64Array.from(rows, (i) => column[i]));
-    varianceInflation(problem.columns, weights).forEach((value, j) => expect(value).toBeCloseTo(varianceInflation(repeated)[j], 10));
+    varianceInflation(problem.columns, weights).forEach((value, j) =>
+      expect(value).toBeCloseTo(varianceInflation(repeated)[j], 10),
+    );
   });
 
   it('standard errors of a saturated fit are those of log odds, and collinear columns have none', () => {
@@ -67,7 +69,9 @@ describe('fitForeignChallenger', () => {
   it('refuses what the library cannot do', () => {
     const many = randomProblem(1, 5001, 1, problem.penalty);
     expect(() => fitForeignChallenger(many)).toThrow('5001 rows');
-    expect(() => fitForeignChallenger({ ...problem, weights: Float64Array.from({ length: 300 }, (_, i) => 1 + (i % 2)) })).toThrow('weights');
+    expect(() =>
+      fitForeignChallenger({ ...problem, weights: Float64Array.from({ length: 300 }, (_, i) => 1 + (i % 2)) }),
+    ).toThrow('weights');
     expect(() => fitForeignChallenger({ ...problem, offset: new Float64Array(300) })).toThrow('offset');
   });
 });

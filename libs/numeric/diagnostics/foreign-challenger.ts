@@ -19,7 +19,10 @@ export const MOST_CHALLENGER_ROWS = 5000;
  * @throws NumericError for more than 5,000 rows, weights that differ, an offset
  * @example fitForeignChallenger({ columns, outcome, penalty: { mixing: 1, standardize: true } }).coefficients
  */
-export function fitForeignChallenger(problem: FitProblem, options: { steps?: number } = {}): { intercept: number; coefficients: Float64Array } {
+export function fitForeignChallenger(
+  problem: FitProblem,
+  options: { steps?: number } = {},
+): { intercept: number; coefficients: Float64Array } {
   requireProblem(problem);
   const { outcome, weights, offset } = problem;
   const rows = outcome.length;

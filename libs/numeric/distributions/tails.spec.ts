@@ -1,6 +1,16 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { betaCdf, betaQuantile, binomialTail, chiSquareQuantile, chiSquareTail, normalCdf, normalQuantile, normalTail, normalTwoSided } from './tails';
+import {
+  betaCdf,
+  betaQuantile,
+  binomialTail,
+  chiSquareQuantile,
+  chiSquareTail,
+  normalCdf,
+  normalQuantile,
+  normalTail,
+  normalTwoSided,
+} from './tails';
 
 describe('distributions', () => {
   it('keep their digits far out, where 1 - cdf has none', () => {

@@ -45,7 +45,8 @@ export function chiSquareQuantile(p: number, degreesOfFreedom: number): number {
   if (p === 0) return 0;
   if (p === 1) return Infinity;
   const half = degreesOfFreedom / 2;
-  const below = (x: number): boolean => (p > 0.5 ? gammainc(x / 2, half, true, true) > 1 - p : gammainc(x / 2, half, true, false) < p);
+  const below = (x: number): boolean =>
+    p > 0.5 ? gammainc(x / 2, half, true, true) > 1 - p : gammainc(x / 2, half, true, false) < p;
   let low = 0;
   let high = Math.max(1, 2 * degreesOfFreedom);
   while (below(high)) high *= 2;
@@ -75,7 +76,11 @@ export function betaQuantile(p: number, a: number, b: number): number {
  * @example binomialTail(4, 100, 0.01) // 0.01837
  */
 export function binomialTail(count: number, trials: number, probability: number): number {
-  requireThat(Number.isInteger(count) && Number.isInteger(trials) && trials >= 0, 'count', 'count and trials must be whole numbers.');
+  requireThat(
+    Number.isInteger(count) && Number.isInteger(trials) && trials >= 0,
+    'count',
+    'count and trials must be whole numbers.',
+  );
   requireThat(probability >= 0 && probability <= 1, 'probability', 'a probability lies between 0 and 1.');
   if (count <= 0) return 1;
   if (count > trials) return 0;

@@ -187,7 +187,16 @@ class SecondMethod {
       objective += this.lasso[j] * Math.abs(point[j + 1]);
     });
     const status = residual <= tolerance ? 'converged' : 'iteration-limit';
-    return { lambda: this.lambda, intercept, coefficients, objective, deviance: 2 * total * loss, optimalityResidual: residual, iterations, status };
+    return {
+      lambda: this.lambda,
+      intercept,
+      coefficients,
+      objective,
+      deviance: 2 * total * loss,
+      optimalityResidual: residual,
+      iterations,
+      status,
+    };
   }
 }
 

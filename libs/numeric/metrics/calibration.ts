@@ -64,7 +64,13 @@ export function hosmerLemeshow(
   let statistic = 0;
   const table: HosmerLemeshowGroup[] = [];
   for (let g = 0; g < groups; g++) {
-    table.push({ lower: edges[g], upper: edges[Math.min(g + 1, edges.length - 1)], rows: rows[g], bads: bads[g], expectedBads: expected[g] });
+    table.push({
+      lower: edges[g],
+      upper: edges[Math.min(g + 1, edges.length - 1)],
+      rows: rows[g],
+      bads: bads[g],
+      expectedBads: expected[g],
+    });
     const gap = bads[g] - expected[g];
     const variance = expected[g] * (1 - expected[g] / rows[g]);
     if (gap !== 0) statistic += (gap * gap) / variance;
@@ -99,7 +105,13 @@ interface Normal {
   readonly loss: number;
 }
 
-function normalEquations(x: Float64Array, bad: Float64Array, weights: ArrayLike<number> | undefined, a: number, b: number): Normal {
+function normalEquations(
+  x: Float64Array,
+  bad: Float64Array,
+  weights: ArrayLike<number> | undefined,
+  a: number,
+  b: number,
+): Normal {
   let gradientIntercept = 0;
   let gradientSlope = 0;
   let ii = 0;
@@ -130,7 +142,9 @@ function calibrationLine(x: Float64Array, bad: Float64Array, weights: ArrayLike<
   let converged = false;
   for (let round = 0; round < 100 && !converged; round++) {
     const determinant = now.ii * now.ss - now.is * now.is;
-    const stepA = freeSlope ? (now.ss * now.gradientIntercept - now.is * now.gradientSlope) / determinant : now.gradientIntercept / now.ii;
+    const stepA = freeSlope
+      ? (now.ss * now.gradientIntercept - now.is * now.gradientSlope) / determinant
+      : now.gradientIntercept / now.ii;
     const stepB = freeSlope ? (now.ii * now.gradientSlope - now.is * now.gradientIntercept) / determinant : 0;
     if (!Number.isFinite(stepA) || !Number.isFinite(stepB)) break;
     let scale = 1;
@@ -169,7 +183,8 @@ export function calibration(pd: ArrayLike<number>, outcome: ArrayLike<number>, w
   let bads = 0;
   let meanPd = 0;
   for (let i = 0; i < pd.length; i++) {
-    if (pd[i] === 0 || pd[i] === 1) throw new NumericError('out-of-range', `pd is ${pd[i]} at index ${i}; its logit is infinite.`, { name: 'pd', index: i });
+    if (pd[i] === 0 || pd[i] === 1)
+      throw new NumericError('out-of-range', `pd is ${pd[i]} at index ${i}; its logit is infinite.`, { name: 'pd', index: i });
     x[i] = Math.log(pd[i]) - Math.log1p(-pd[i]);
     bad[i] = 1 - outcome[i];
     const weight = weights ? weights[i] : 1;

@@ -109,7 +109,11 @@ export interface KolmogorovSmirnov {
  * Kolmogorov-Smirnov statistic between the score distributions of bads and goods.
  * @example kolmogorovSmirnov([1, 2, 3, 4], [0, 0, 1, 1]) // { ks: 1, at: 2 }
  */
-export function kolmogorovSmirnov(scores: ArrayLike<number>, outcome: ArrayLike<number>, weights?: ArrayLike<number>): KolmogorovSmirnov {
+export function kolmogorovSmirnov(
+  scores: ArrayLike<number>,
+  outcome: ArrayLike<number>,
+  weights?: ArrayLike<number>,
+): KolmogorovSmirnov {
   if (weights) {
     let best = { ks: 0, at: NaN };
     for (const point of rocCurve(scores, outcome, weights)) {
@@ -213,7 +217,8 @@ function covariance(a: Float64Array, meanA: number, b: Float64Array, meanB: numb
 
 function covarianceOfAreas(a: Placements, b: Placements): number {
   return (
-    covariance(a.ofGoods, a.area, b.ofGoods, b.area) / a.ofGoods.length + covariance(a.ofBads, a.area, b.ofBads, b.area) / a.ofBads.length
+    covariance(a.ofGoods, a.area, b.ofGoods, b.area) / a.ofGoods.length +
+    covariance(a.ofBads, a.area, b.ofBads, b.area) / a.ofBads.length
   );
 }
 

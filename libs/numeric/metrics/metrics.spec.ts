@@ -12,7 +12,10 @@ import { populationStability, stabilityParts } from './stability-index';
 
 /** Scores of few values, so that there are ties, with both classes. */
 const scored = fc
-  .array(fc.tuple(fc.integer({ min: 0, max: 8 }), fc.integer({ min: 0, max: 1 }), fc.integer({ min: 1, max: 3 })), { minLength: 2, maxLength: 60 })
+  .array(fc.tuple(fc.integer({ min: 0, max: 8 }), fc.integer({ min: 0, max: 1 }), fc.integer({ min: 1, max: 3 })), {
+    minLength: 2,
+    maxLength: 60,
+  })
   .map((rows) => ({ scores: rows.map(([s]) => s), outcome: rows.map(([, y]) => y), weights: rows.map(([, , w]) => w) }))
   .filter(({ outcome }) => outcome.includes(0) && outcome.includes(1));
 
@@ -34,9 +37,13 @@ describe('discrimination', () => {
     fc.assert(
       fc.property(scored, ({ scores, outcome, weights }) => {
         expect(auc(scores, outcome)).toBeCloseTo(pairs(scores, outcome), 12);
-        const repeat = (values: number[]): number[] => values.flatMap((value, i) => Array.from({ length: weights[i] }, () => value));
+        const repeat = (values: number[]): number[] =>
+          values.flatMap((value, i) => Array.from({ length: weights[i] }, () => value));
         expect(auc(scores, outcome, weights)).toBeCloseTo(auc(repeat(scores), repeat(outcome)), 12);
-        expect(kolmogorovSmirnov(scores, outcome, weights).ks).toBeCloseTo(kolmogorovSmirnov(repeat(scores), repeat(outcome)).ks, 12);
+        expect(kolmogorovSmirnov(scores, outcome, weights).ks).toBeCloseTo(
+          kolmogorovSmirnov(repeat(scores), repeat(outcome)).ks,
+          12,
+        );
       }),
     );
   });
@@ -79,7 +86,10 @@ describe('discrimination', () => {
 
 describe('probabilities', () => {
   const forecasts = fc
-    .array(fc.tuple(fc.double({ min: 0.01, max: 0.99, noNaN: true }), fc.integer({ min: 0, max: 1 })), { minLength: 20, maxLength: 80 })
+    .array(fc.tuple(fc.double({ min: 0.01, max: 0.99, noNaN: true }), fc.integer({ min: 0, max: 1 })), {
+      minLength: 20,
+      maxLength: 80,
+    })
     .map((rows) => ({ pd: rows.map(([p]) => Math.round(p * 20) / 20 + 0.001), outcome: rows.map(([, y]) => y) }))
     .filter(({ outcome, pd }) => outcome.includes(0) && outcome.includes(1) && pd.every((p) => p < 1));
 
@@ -130,7 +140,8 @@ describe('probabilities', () => {
     expect([single.groups, single.pValue]).toEqual([1, null]);
   });
 
-  it('the prior correction undoes itself', () => expect(priorCorrectedIntercept(priorCorrectedIntercept(0.7, 0.3, 0.04), 0.04, 0.3)).toBeCloseTo(0.7, 12));
+  it('the prior correction undoes itself', () =>
+    expect(priorCorrectedIntercept(priorCorrectedIntercept(0.7, 0.3, 0.04), 0.04, 0.3)).toBeCloseTo(0.7, 12));
 });
 
 describe('stability and intervals', () => {

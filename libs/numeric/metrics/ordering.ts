@@ -9,7 +9,10 @@ export function ascendingOrder(values: ArrayLike<number>): Uint32Array {
 }
 
 /** The scores of the goods and of the bads, each ascending. */
-export function scoresByOutcome(scores: ArrayLike<number>, outcome: ArrayLike<number>): { goods: Float64Array; bads: Float64Array } {
+export function scoresByOutcome(
+  scores: ArrayLike<number>,
+  outcome: ArrayLike<number>,
+): { goods: Float64Array; bads: Float64Array } {
   requireSameLength('outcome', outcome.length, scores.length);
   let count = 0;
   for (let i = 0; i < outcome.length; i++) {

@@ -9,7 +9,8 @@ export function requireForecast(pd: ArrayLike<number>, outcome: ArrayLike<number
   requireOutcome(outcome);
   if (pd.length === 0) throw new NumericError('no-rows', 'There is no row.', { name: 'pd' });
   for (let i = 0; i < pd.length; i++) {
-    if (!(pd[i] >= 0 && pd[i] <= 1)) throw new NumericError('out-of-range', `pd is ${pd[i]} at index ${i}.`, { name: 'pd', index: i });
+    if (!(pd[i] >= 0 && pd[i] <= 1))
+      throw new NumericError('out-of-range', `pd is ${pd[i]} at index ${i}.`, { name: 'pd', index: i });
   }
   if (!weights) return pd.length;
   requireSameLength('weights', weights.length, pd.length);
@@ -61,7 +62,11 @@ export interface MurphyDecomposition {
  * @param forecast PD of each group, rows and bads its counts (or weights)
  * Source: A. H. Murphy, J. Applied Meteorology 12:595-600, 1973.
  */
-export function murphyOfGroups(forecast: ArrayLike<number>, rows: ArrayLike<number>, bads: ArrayLike<number>): MurphyDecomposition {
+export function murphyOfGroups(
+  forecast: ArrayLike<number>,
+  rows: ArrayLike<number>,
+  bads: ArrayLike<number>,
+): MurphyDecomposition {
   requireSameLength('rows', rows.length, forecast.length);
   requireSameLength('bads', bads.length, forecast.length);
   let total = 0;
@@ -81,11 +86,21 @@ export function murphyOfGroups(forecast: ArrayLike<number>, rows: ArrayLike<numb
     resolution += (rows[g] / total) * (rate - base) ** 2;
   }
   const uncertainty = base * (1 - base);
-  return { brier: reliability - resolution + uncertainty, reliability, resolution, uncertainty, skill: (resolution - reliability) / uncertainty };
+  return {
+    brier: reliability - resolution + uncertainty,
+    reliability,
+    resolution,
+    uncertainty,
+    skill: (resolution - reliability) / uncertainty,
+  };
 }
 
 /** Murphy's decomposition with rows of equal PD as groups: exact for a scorecard, whose PDs take few values. */
-export function murphyDecomposition(pd: ArrayLike<number>, outcome: ArrayLike<number>, weights?: ArrayLike<number>): MurphyDecomposition {
+export function murphyDecomposition(
+  pd: ArrayLike<number>,
+  outcome: ArrayLike<number>,
+  weights?: ArrayLike<number>,
+): MurphyDecomposition {
   requireForecast(pd, outcome, weights);
   const forecast: number[] = [];
   const rows: number[] = [];

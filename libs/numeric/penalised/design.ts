@@ -144,7 +144,14 @@ export class Design {
 }
 
 /** Adds the four products of slices (a, a+1) with (b, b+1) to the Gram matrix. */
-function addProducts(gram: Float64Array, size: number, slices: readonly Float64Array[], a: number, b: number, count: number): void {
+function addProducts(
+  gram: Float64Array,
+  size: number,
+  slices: readonly Float64Array[],
+  a: number,
+  b: number,
+  count: number,
+): void {
   const a0 = slices[a];
   const a1 = slices[a + 1];
   const b0 = slices[b];

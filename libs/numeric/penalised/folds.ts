@@ -90,7 +90,8 @@ function fitFold(
   const weights = new Float64Array(rows);
   let heldOut = 0;
   for (let i = 0; i < rows; i++) {
-    if (folds[i] === 0) throw new NumericError('out-of-range', `Row ${i} is in fold 0; folds start at 1.`, { name: 'folds', index: i });
+    if (folds[i] === 0)
+      throw new NumericError('out-of-range', `Row ${i} is in fold 0; folds start at 1.`, { name: 'folds', index: i });
     const weight = problem.weights ? problem.weights[i] : 1;
     if (folds[i] === fold) heldOut += weight;
     else {
@@ -124,7 +125,10 @@ function fitFold(
 }
 
 /** Mean, standard error sqrt(weighted mean of (fold - mean)^2 / (K - 1)) and the two rules of choice. */
-export function summarise(lambdas: readonly number[], folds: FoldResult[]): Omit<CrossValidation, 'optimalityResidual' | 'converged'> {
+export function summarise(
+  lambdas: readonly number[],
+  folds: FoldResult[],
+): Omit<CrossValidation, 'optimalityResidual' | 'converged'> {
   const total = folds.reduce((sum, { weight }) => sum + weight, 0);
   const mean = lambdas.map((_, k) => folds.reduce((sum, fold) => sum + fold.weight * fold.deviance[k], 0) / total);
   const standardError = lambdas.map((_, k) => {

@@ -13,7 +13,9 @@ const shares = fc.double({ min: 0.02, max: 0.8, noNaN: true });
 
 function expectSame(a: Fit, b: Fit, tolerance: number, factor: (j: number) => number = () => 1): void {
   expect(Math.abs(a.intercept - b.intercept)).toBeLessThanOrEqual(tolerance);
-  a.coefficients.forEach((value, j) => expect(Math.abs(value - factor(j) * b.coefficients[j])).toBeLessThanOrEqual(tolerance * Math.max(1, factor(j))));
+  a.coefficients.forEach((value, j) =>
+    expect(Math.abs(value - factor(j) * b.coefficients[j])).toBeLessThanOrEqual(tolerance * Math.max(1, factor(j))),
+  );
 }
 
 // A residual of 1e-11 over a smallest curvature near 1e-3 of these small random designs bounds coefficients to 1e-8; 1e-7 leaves room.
@@ -84,7 +86,10 @@ describe('what must hold for every fit', () => {
     fc.assert(
       fc.property(problems, shares, fc.constantFrom(1e-3, 0.5, 7, 1000), (problem, share, factor) => {
         const standardised: FitProblem = { ...problem, penalty: { ...problem.penalty, standardize: true } };
-        const scaled: FitProblem = { ...standardised, columns: standardised.columns.map((column, j) => (j === 0 ? column.map((x) => factor * x) : column)) };
+        const scaled: FitProblem = {
+          ...standardised,
+          columns: standardised.columns.map((column, j) => (j === 0 ? column.map((x) => factor * x) : column)),
+        };
         const lambda = share * largestLambda(standardised);
         expectSame(fitAt(standardised, lambda, TIGHT), fitAt(scaled, lambda, TIGHT), 1e-7, (j) => (j === 0 ? factor : 1));
       }),
@@ -130,7 +135,8 @@ describe('what must hold for every fit', () => {
         if (oneFree) multipliers[0] = 0;
         const own: FitProblem = { ...problem, penalty: { ...problem.penalty, mixing, multipliers } };
         const largest = largestLambda(own);
-        const kept = (lambda: number): number => fitAt(own, lambda).coefficients.filter((b, j) => b !== 0 && multipliers[j] > 0).length;
+        const kept = (lambda: number): number =>
+          fitAt(own, lambda).coefficients.filter((b, j) => b !== 0 && multipliers[j] > 0).length;
         expect(kept(largest)).toBe(0);
         expect(kept(0.999 * largest)).toBeGreaterThanOrEqual(1);
       }),
@@ -175,7 +181,11 @@ describe('what must hold for every fit', () => {
       fc.property(fc.array(fc.double({ min: 0.1, max: 9, noNaN: true }), { minLength: 4, maxLength: 40 }), (weights) => {
         const outcome = Uint8Array.from(weights, (_, i) => (i % 3 === 0 ? 0 : 1));
         const sum = (good: number): number => weights.reduce((total, w, i) => total + (outcome[i] === good ? w : 0), 0);
-        const fit = fitAt({ columns: [], outcome, weights: Float64Array.from(weights), penalty: { mixing: 1, standardize: true } }, 0.1, TIGHT);
+        const fit = fitAt(
+          { columns: [], outcome, weights: Float64Array.from(weights), penalty: { mixing: 1, standardize: true } },
+          0.1,
+          TIGHT,
+        );
         expect(fit.intercept).toBeCloseTo(Math.log(sum(1) / sum(0)), 10);
         expect(fit.status).toBe('converged');
       }),

@@ -59,7 +59,12 @@ describe('the parts of the solver', () => {
         };
         const linear = fill(() => 8 * random.normal());
         const t = new Float64Array(size);
-        minimiseModel(model, t, linear.slice(), fill(() => 1e-10));
+        minimiseModel(
+          model,
+          t,
+          linear.slice(),
+          fill(() => 1e-10),
+        );
         t.forEach((value, j) => {
           const gradient = linear[j] + t.reduce((sum, x, k) => sum + model.hessian[j * size + k] * x, 0);
           expect(violation(value, gradient, model.l1[j], model.l2[j], model.lower[j], model.upper[j])).toBeLessThanOrEqual(1e-8);
@@ -80,7 +85,12 @@ describe('the parts of the solver', () => {
     const scaled = list.map((j) => columns[j].map((x) => (x - design.centre[j]) / design.scale[j]));
     const slices = [new Float64Array(outcome.length).fill(1), ...scaled];
     slices.forEach((a, p) =>
-      slices.forEach((b, q) => expect(gram[p * 4 + q]).toBeCloseTo(design.share.reduce((sum, s, i) => sum + s * a[i] * b[i], 0), 12)),
+      slices.forEach((b, q) =>
+        expect(gram[p * 4 + q]).toBeCloseTo(
+          design.share.reduce((sum, s, i) => sum + s * a[i] * b[i], 0),
+          12,
+        ),
+      ),
     );
     // Standardised with the weights: variances 1, centred on the intercept's column.
     expect(gram[5]).toBeCloseTo(1, 12);
@@ -88,10 +98,15 @@ describe('the parts of the solver', () => {
     const asNumbers = Float64Array.from(outcome, (y) => y - 0.5);
     const gradient = new Float64Array(5);
     design.gradient(asNumbers, [0, 1, 2, 3, 4], gradient);
-    gradient.forEach((g, j) => expect(g).toBeCloseTo(columns[j].reduce((sum, x, i) => sum + x * asNumbers[i], 0) / design.scale[j], 8));
+    gradient.forEach((g, j) =>
+      expect(g).toBeCloseTo(columns[j].reduce((sum, x, i) => sum + x * asNumbers[i], 0) / design.scale[j], 8),
+    );
     const eta = new Float64Array(outcome.length);
     const coefficients = Float64Array.of(0.3, 0, -1, 2, 0.1);
     design.linearPredictor(0.5, coefficients, undefined, eta);
-    expect(eta[2400]).toBeCloseTo(columns.reduce((sum, column, j) => sum + coefficients[j] * column[2400], 0.5), 12);
+    expect(eta[2400]).toBeCloseTo(
+      columns.reduce((sum, column, j) => sum + coefficients[j] * column[2400], 0.5),
+      12,
+    );
   });
 });

@@ -23,7 +23,11 @@ function codeOf(act: () => unknown): { code: string; where: object } {
 describe('fitPath', () => {
   it('walks a logarithmic grid from the largest lambda and reports progress', () => {
     const seen: number[] = [];
-    const path = fitPath(problem, { count: 10, smallestRatio: 1e-3, earlyStop: false }, { onFit: (_, index, count) => seen.push(index / count) });
+    const path = fitPath(
+      problem,
+      { count: 10, smallestRatio: 1e-3, earlyStop: false },
+      { onFit: (_, index, count) => seen.push(index / count) },
+    );
     expect(path.fits).toHaveLength(10);
     expect(seen).toHaveLength(10);
     expect(path.fits[0].lambda).toBe(path.largestLambda);
@@ -85,7 +89,11 @@ describe('fitPath', () => {
 });
 
 describe('what data can do to a fit is a status', () => {
-  const rows = (x: number[], y: number[], penalty = lasso): FitProblem => ({ columns: [Float64Array.from(x)], outcome: Uint8Array.from(y), penalty });
+  const rows = (x: number[], y: number[], penalty = lasso): FitProblem => ({
+    columns: [Float64Array.from(x)],
+    outcome: Uint8Array.from(y),
+    penalty,
+  });
 
   it('complete and quasi-complete separation without a penalty', () => {
     expect(fitAt(rows([-2, -1, 1, 2], [0, 0, 1, 1]), 0).status).toBe('separation');
@@ -118,10 +126,16 @@ describe('what data can do to a fit is a status', () => {
 });
 
 describe('bad arguments are refused with their place', () => {
-  const change = (over: Partial<FitProblem>): (() => unknown) => () => fitAt({ ...problem, ...over }, 0.1);
+  const change =
+    (over: Partial<FitProblem>): (() => unknown) =>
+    () =>
+      fitAt({ ...problem, ...over }, 0.1);
   it('NaN in a column, an offset or a weight', () => {
     const broken = problem.columns.map((column, j) => (j === 2 ? column.map((x, i) => (i === 17 ? NaN : x)) : column));
-    expect(codeOf(change({ columns: broken }))).toEqual({ code: 'not-a-number', where: { name: 'columns', column: 2, index: 17 } });
+    expect(codeOf(change({ columns: broken }))).toEqual({
+      code: 'not-a-number',
+      where: { name: 'columns', column: 2, index: 17 },
+    });
     expect(codeOf(change({ offset: new Float64Array(400).fill(Infinity) })).code).toBe('not-a-number');
     expect(codeOf(change({ weights: new Float64Array(400).fill(-1) })).code).toBe('out-of-range');
     expect(codeOf(change({ weights: new Float64Array(400) })).code).toBe('out-of-range');
@@ -135,7 +149,9 @@ describe('bad arguments are refused with their place', () => {
     expect(codeOf(change({ penalty: { ...lasso, lower: new Float64Array(6).fill(0.1) } })).code).toBe('out-of-range');
     expect(codeOf(change({ penalty: { ...lasso, multipliers: new Float64Array(6).fill(-1) } })).code).toBe('out-of-range');
     expect(codeOf(() => fitAt(problem, -1)).code).toBe('out-of-range');
-    expect(codeOf(() => fitPath({ ...problem, columns: [] }, { count: 5, smallestRatio: 0.1, earlyStop: false })).code).toBe('out-of-range');
+    expect(codeOf(() => fitPath({ ...problem, columns: [] }, { count: 5, smallestRatio: 0.1, earlyStop: false })).code).toBe(
+      'out-of-range',
+    );
   });
 });
 
@@ -178,7 +194,10 @@ describe('crossValidate', () => {
     const gap = folds.map((fold) => (fold === 3 ? 4 : fold));
     expect(codeOf(() => crossValidate(problem, gap, [0.1]))).toEqual({ code: 'no-rows', where: { name: 'folds', fold: 3 } });
     const split = Uint8Array.from(problem.outcome, (y) => y + 1);
-    expect(codeOf(() => crossValidate(problem, split, [0.1]))).toEqual({ code: 'one-class', where: { name: 'outcome', fold: 1 } });
+    expect(codeOf(() => crossValidate(problem, split, [0.1]))).toEqual({
+      code: 'one-class',
+      where: { name: 'outcome', fold: 1 },
+    });
   });
 
   it('chooses by the rules: ties go to the largest lambda, the end of the grid is reported', () => {

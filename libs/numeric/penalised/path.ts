@@ -44,7 +44,8 @@ export function nullDeviance(problem: FitProblem): number {
     if (Math.abs(step) < 1e-14 * Math.max(1, Math.abs(intercept))) break;
   }
   let sum = 0;
-  for (let i = 0; i < outcome.length; i++) sum += (weights ? weights[i] : 1) * rowLoss(intercept + (offset ? offset[i] : 0), outcome[i]);
+  for (let i = 0; i < outcome.length; i++)
+    sum += (weights ? weights[i] : 1) * rowLoss(intercept + (offset ? offset[i] : 0), outcome[i]);
   return 2 * sum;
 }
 
@@ -117,7 +118,9 @@ export function automaticGrid(largest: number, count: number, smallestRatio: num
   requireThat(Number.isInteger(count) && count >= 1, 'count', 'count must be a whole number of at least 1.');
   requireThat(smallestRatio > 0 && smallestRatio < 1, 'smallestRatio', 'the smallest ratio lies strictly between 0 and 1.');
   requireThat(largest > 0, 'grid', 'no penalised column has a gradient at all, so there is no largest lambda to start from.');
-  return Array.from({ length: count }, (_, k) => (k === 0 ? largest : largest * Math.exp((Math.log(smallestRatio) * k) / (count - 1))));
+  return Array.from({ length: count }, (_, k) =>
+    k === 0 ? largest : largest * Math.exp((Math.log(smallestRatio) * k) / (count - 1)),
+  );
 }
 
 /**

@@ -41,7 +41,9 @@ export interface FitProblem {
 }
 
 /** A stated grid never stops early; an automatic one is logarithmic from the largest lambda down to smallestRatio times it. */
-export type Grid = { readonly lambdas: readonly number[] } | { readonly count: number; readonly smallestRatio: number; readonly earlyStop: boolean };
+export type Grid =
+  | { readonly lambdas: readonly number[] }
+  | { readonly count: number; readonly smallestRatio: number; readonly earlyStop: boolean };
 
 export interface Path {
   readonly fits: Fit[];

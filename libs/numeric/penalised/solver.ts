@@ -49,7 +49,11 @@ export class Solver {
   private previousLambda = Infinity;
 
   constructor(
-    private readonly problem: { readonly columns: FitProblem['columns']; readonly outcome: Uint8Array; readonly offset?: Float64Array },
+    private readonly problem: {
+      readonly columns: FitProblem['columns'];
+      readonly outcome: Uint8Array;
+      readonly offset?: Float64Array;
+    },
     private readonly penaltySettings: Penalty,
     weights?: ArrayLike<number>,
   ) {
@@ -128,7 +132,14 @@ export class Solver {
 
   private violationOf(j: number, lambda: number): number {
     const { penalty } = this;
-    const inward = violation(this.t[j], this.gradient[j], lambda * penalty.absolute[j], lambda * penalty.square[j], penalty.lower[j], penalty.upper[j]);
+    const inward = violation(
+      this.t[j],
+      this.gradient[j],
+      lambda * penalty.absolute[j],
+      lambda * penalty.square[j],
+      penalty.lower[j],
+      penalty.upper[j],
+    );
     return inward * penalty.reporting[j];
   }
 
@@ -214,7 +225,8 @@ export class Solver {
       const before = worst;
       const next = this.step(lambda, list, objective, worst, tolerance);
       iterations += next.evaluations;
-      stalled = next.moved && (next.objective < objective - 1e-15 * Math.abs(objective) || next.worst < 0.9 * before) ? 0 : stalled + 1;
+      stalled =
+        next.moved && (next.objective < objective - 1e-15 * Math.abs(objective) || next.worst < 0.9 * before) ? 0 : stalled + 1;
       if (next.halved || !next.moved) this.curvature = null;
       objective = next.objective;
       worst = next.worst;
@@ -286,7 +298,12 @@ export class Solver {
       gradient[a] = centred - (curvature.gram[a + 1] / curvature.gram[0]) * g0;
     });
     const goal = Math.max(0.1 * tolerance, Math.min(1e-3 * worst, 1e-6));
-    minimiseModel(model, t, gradient, Float64Array.from(own, (j) => (inside.has(j) ? goal / penalty.reporting[j] : Infinity)));
+    minimiseModel(
+      model,
+      t,
+      gradient,
+      Float64Array.from(own, (j) => (inside.has(j) ? goal / penalty.reporting[j] : Infinity)),
+    );
     let interceptStep = -g0;
     for (let a = 0; a < size; a++) interceptStep -= curvature.gram[a + 1] * (t[a] - start[a]);
     interceptStep /= curvature.gram[0];
@@ -304,7 +321,13 @@ export class Solver {
         this.centredIntercept = intercept;
         own.forEach((j, a) => (this.t[j] = start[a]));
         const back = this.evaluate(lambda, list);
-        return { objective: back, worst: this.residualOver(list, lambda), evaluations: evaluations + 1, halved: true, moved: false };
+        return {
+          objective: back,
+          worst: this.residualOver(list, lambda),
+          evaluations: evaluations + 1,
+          halved: true,
+          moved: false,
+        };
       }
       length /= 2;
     }
@@ -320,7 +343,10 @@ export class Solver {
       scale: Float64Array.from(free, (j) => this.design.scale[j]),
       lower: Float64Array.from(free, (j) => this.penalty.lower[j] - this.t[j]),
       upper: Float64Array.from(free, (j) => this.penalty.upper[j] - this.t[j]),
-      gradient: Float64Array.from(free, (j) => this.gradient[j] - (this.design.centre[j] / this.design.scale[j]) * this.gradientOfIntercept),
+      gradient: Float64Array.from(
+        free,
+        (j) => this.gradient[j] - (this.design.centre[j] / this.design.scale[j]) * this.gradientOfIntercept,
+      ),
       gradientOfIntercept: this.gradientOfIntercept,
       gram,
       outcome: this.problem.outcome,
@@ -331,6 +357,15 @@ export class Solver {
   private present(lambda: number, objective: number, optimalityResidual: number, iterations: number, status: FitStatus): Fit {
     const intercept = this.unscale();
     const deviance = 2 * this.design.totalWeight * this.loss;
-    return { lambda, intercept, coefficients: this.coefficients.slice(), objective, deviance, optimalityResidual, iterations, status };
+    return {
+      lambda,
+      intercept,
+      coefficients: this.coefficients.slice(),
+      objective,
+      deviance,
+      optimalityResidual,
+      iterations,
+      status,
+    };
   }
 }

@@ -11,7 +11,11 @@ export function requireProblem(problem: FitProblem): void {
     requireSameLength(`column ${j}`, column.length, rows);
     for (let i = 0; i < rows; i++) {
       if (!Number.isFinite(column[i])) {
-        throw new NumericError('not-a-number', `Column ${j} has ${column[i]} at row ${i}.`, { name: 'columns', column: j, index: i });
+        throw new NumericError('not-a-number', `Column ${j} has ${column[i]} at row ${i}.`, {
+          name: 'columns',
+          column: j,
+          index: i,
+        });
       }
     }
   });
@@ -36,7 +40,8 @@ export function requireBothOutcomes(outcome: Uint8Array, weights?: Float64Array)
     if (outcome[i] === 1) good = true;
     else bad = true;
   }
-  if (!good || !bad) throw new NumericError('one-class', `There is no ${good ? 'bad' : 'good'} among the rows with weight.`, { name: 'outcome' });
+  if (!good || !bad)
+    throw new NumericError('one-class', `There is no ${good ? 'bad' : 'good'} among the rows with weight.`, { name: 'outcome' });
 }
 
 export function requirePenalty(penalty: Penalty, columns: number): void {
@@ -49,11 +54,15 @@ export function requirePenalty(penalty: Penalty, columns: number): void {
   }
   if (lower) {
     requireSameLength('lower', lower.length, columns);
-    lower.forEach((limit, j) => requireThat(limit <= 0, 'lower', `The lower limit of column ${j} is ${limit}; it must be at most 0.`));
+    lower.forEach((limit, j) =>
+      requireThat(limit <= 0, 'lower', `The lower limit of column ${j} is ${limit}; it must be at most 0.`),
+    );
   }
   if (upper) {
     requireSameLength('upper', upper.length, columns);
-    upper.forEach((limit, j) => requireThat(limit >= 0, 'upper', `The upper limit of column ${j} is ${limit}; it must be at least 0.`));
+    upper.forEach((limit, j) =>
+      requireThat(limit >= 0, 'upper', `The upper limit of column ${j} is ${limit}; it must be at least 0.`),
+    );
   }
 }
 

@@ -53,7 +53,9 @@ describe('resampleFits', () => {
 
   it('gives the same draws in one batch or in several', () => {
     const all = resampleFits(problem, 0.02, { seed: 5, count: 8, start: fit });
-    const parts = [0, 3, 6].flatMap((first) => resampleFits(problem, 0.02, { seed: 5, first, count: Math.min(3, 8 - first), start: fit }));
+    const parts = [0, 3, 6].flatMap((first) =>
+      resampleFits(problem, 0.02, { seed: 5, first, count: Math.min(3, 8 - first), start: fit }),
+    );
     expect(parts).toEqual(all);
   });
 
@@ -66,7 +68,12 @@ describe('resampleFits', () => {
 });
 
 describe('stability', () => {
-  const draw = (resample: number, intercept: number, ...coefficients: number[]) => ({ resample, intercept, coefficients: Float64Array.from(coefficients), converged: true });
+  const draw = (resample: number, intercept: number, ...coefficients: number[]) => ({
+    resample,
+    intercept,
+    coefficients: Float64Array.from(coefficients),
+    converged: true,
+  });
   const draws = [draw(0, 1, 0.5, 0), draw(1, 1.2, 0, 0.1), draw(2, 0.8, 0.7, 0), draw(3, 1, -0.1, 0)];
 
   it('counts selection, signs and percentiles', () => {
@@ -88,7 +95,13 @@ describe('stability', () => {
 
   it('of a fit, all together', () => {
     const seen: number[] = [];
-    const result = stabilityOfFit(problem, fit, { seed: 2, count: 30, woe: problem.columns.map(() => [-0.5, 0.5]), pointsToDouble: 20, onResample: (n) => seen.push(n) });
+    const result = stabilityOfFit(problem, fit, {
+      seed: 2,
+      count: 30,
+      woe: problem.columns.map(() => [-0.5, 0.5]),
+      pointsToDouble: 20,
+      onResample: (n) => seen.push(n),
+    });
     expect(seen).toHaveLength(30);
     expect(result.converged).toBe(true);
     expect(result.points).toHaveLength(6);

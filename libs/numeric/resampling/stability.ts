@@ -36,7 +36,11 @@ export interface ResampleOptions {
 export function resampleFits(problem: FitProblem, lambda: number, options: ResampleOptions): Draw[] {
   requireProblem(problem);
   requireLambda(lambda);
-  requireThat(Number.isInteger(options.count) && options.count >= 1, 'count', 'the number of resamples is a whole number of at least 1.');
+  requireThat(
+    Number.isInteger(options.count) && options.count >= 1,
+    'count',
+    'the number of resamples is a whole number of at least 1.',
+  );
   const tolerance = options.tolerance ?? 1e-6;
   const solver = new Solver(problem, problem.penalty, problem.weights);
   if (options.start) solver.startFrom(options.start.intercept, options.start.coefficients);

@@ -20,7 +20,10 @@ describe('scaleToPoints', () => {
 
   it('base and spread form give every applicant the same score', () => {
     const finite = fc.double({ min: -3, max: 3, noNaN: true });
-    const terms = fc.array(fc.record({ coefficient: finite, woe: fc.array(finite, { minLength: 1, maxLength: 6 }) }), { minLength: 1, maxLength: 6 });
+    const terms = fc.array(fc.record({ coefficient: finite, woe: fc.array(finite, { minLength: 1, maxLength: 6 }) }), {
+      minLength: 1,
+      maxLength: 6,
+    });
     fc.assert(
       fc.property(finite, terms, (intercept, drawn) => {
         const base = scaleToPoints(scaling, { intercept, terms: drawn });
@@ -30,7 +33,9 @@ describe('scaleToPoints', () => {
         expect(base.basePoints + first(base.points)).toBeCloseTo(base.offset + base.factor * eta, 8);
         expect(first(spread.points)).toBeCloseTo(base.offset + base.factor * eta, 8);
         // Rounding costs at most half a point for each value that is added.
-        expect(Math.abs(base.basePointsRounded + first(base.pointsRounded) - (base.basePoints + first(base.points)))).toBeLessThanOrEqual(0.5 * (drawn.length + 1));
+        expect(
+          Math.abs(base.basePointsRounded + first(base.pointsRounded) - (base.basePoints + first(base.points))),
+        ).toBeLessThanOrEqual(0.5 * (drawn.length + 1));
         spread.neutral.forEach((value) => expect(value).toBeCloseTo(base.basePoints / drawn.length, 10));
       }),
     );

@@ -27,5 +27,11 @@ export const seeds = fc.integer({ min: 0, max: 2 ** 31 });
 
 /** A problem of 60 to 160 rows and 2 to 6 columns with any mixing, standardised or not. */
 export const problems = fc
-  .record({ seed: seeds, rows: fc.integer({ min: 60, max: 160 }), count: fc.integer({ min: 2, max: 6 }), mixing: mixings, standardize: fc.boolean() })
+  .record({
+    seed: seeds,
+    rows: fc.integer({ min: 60, max: 160 }),
+    count: fc.integer({ min: 2, max: 6 }),
+    mixing: mixings,
+    standardize: fc.boolean(),
+  })
   .map(({ seed, rows, count, mixing, standardize }) => randomProblem(seed, rows, count, { mixing, standardize }));
