@@ -54,7 +54,7 @@ const strictness = {
   '@typescript-eslint/require-await': 'off',
   // Objects of plain functions are taken apart in many places here, and none of them uses `this`.
   '@typescript-eslint/unbound-method': 'off',
-// What a callback reports is passed on as it came.
+  // What a callback reports is passed on as it came.
   '@typescript-eslint/prefer-promise-reject-errors': 'off',
   '@typescript-eslint/only-throw-error': 'error',
   '@typescript-eslint/no-misused-promises': ['error', { checksVoidReturn: { arguments: false, attributes: false } }],
