@@ -1,7 +1,7 @@
 import { z } from 'zod';
 import { resultSchema } from '@tallystone/contracts/result/schema';
 import { specificationSchema } from '@tallystone/contracts/specification/schema';
-import { Conclusion, VersionAct } from '@tallystone/contracts/versions/schema';
+import { Conclusion } from '@tallystone/contracts/versions/schema';
 
 /**
  * What the model-governance document is made of: frozen evidence, gathered before, and nothing else. The document is a function of this
@@ -48,7 +48,15 @@ export const VersionFacts = z.strictObject({
 
 /** An act on the version that somebody answers for. */
 export const Signature = z.strictObject({
-  act: VersionAct,
+  act: z.enum([
+    'frozen',
+    'submitted',
+    'withdrawn',
+    'validation started',
+    'concluded',
+    'documentation accepted',
+    'documentation returned',
+  ]),
   name: z.string(),
   role: z.string(),
   at: time,
@@ -229,15 +237,16 @@ export const Replication = z.strictObject({
   matches: z.boolean(),
   numbersCompared: count,
   numbersDiffering: count,
-  largestDifference: maybe,
-  /** Integer scores of applicants, and how many of them are not equal. */
-  scoresCompared: count,
-  scoresDiffering: count,
+  largestCoefficientDifference: maybe,
+  largestPointsDifference: maybe,
+  /** Every rounded score the same. */
+  integerScoresEqual: z.boolean().nullable(),
   specificationSha256: sha256,
   dataSha256: sha256,
   resultSha256: sha256.nullable(),
-  /** Numbers of both halves to be laid beside each other: intercept, coefficients, points, whatever differs. */
-  rows: z.array(z.strictObject({ label: z.string(), fit: maybe, replication: maybe, difference: maybe, meets: z.boolean() })),
+  /** Coefficients of the replication, by column, and its intercept, to be laid beside those of the version. */
+  intercept: maybe,
+  coefficients: z.array(z.strictObject({ column: z.string(), coefficient: z.number() })),
 });
 
 export const Finding = z.strictObject({

@@ -81,6 +81,22 @@ function overlapping(words: Word[]): [string, string][] {
   return found;
 }
 
+describe('the eyes of this spec', () => {
+  const word = (left: number, top: number): Word => ({
+    page: 1,
+    left,
+    top,
+    right: left + 40,
+    bottom: top + 9,
+    text: `${left},${top}`,
+  });
+  it('see a word on another and one beyond the margin, and nothing in orderly lines', () => {
+    expect(overlapping([word(60, 100), word(80, 102)])).toEqual([['60,100', '80,102']]);
+    expect(overlapping([word(60, 100), word(104, 100), word(60, 111)])).toEqual([]);
+    expect(outside([word(520, 100), word(100, 100), word(20, 100)]).map(({ left }) => left)).toEqual([520, 20]);
+  });
+});
+
 describe('the document of a complete version', () => {
   const input = inventedInput();
   let bytes: Buffer;

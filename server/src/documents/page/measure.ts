@@ -93,9 +93,8 @@ export class Measure {
 
 /** Line ends made equal; tabs to blanks; control characters, which have no glyph, taken out. */
 export function plainText(text: string): string {
-  // eslint-disable-next-line no-control-regex -- control characters are what is being removed
-  return text
-    .replace(/\r\n?/g, '\n')
-    .replace(/\t/g, ' ')
-    .replace(/[\u0000-\u0009\u000b-\u001f\u007f]/g, '');
+  const kept = [...text.replace(/\r\n?/g, '\n').replace(/\t/g, ' ')].filter(
+    (character) => character === '\n' || (character >= ' ' && character !== '\u007f'),
+  );
+  return kept.join('');
 }

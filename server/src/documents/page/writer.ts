@@ -5,7 +5,11 @@ import type { Sheet } from './sheet';
 import { prepareTable, type Box, type TableSpec } from './table';
 
 /** Where the numbers of a table or figure come from. */
-export type Citation = string | null | 'record' | 'itself';
+export type Citation = string | null;
+/** The record of actions is the source. */
+export const fromRecord = 'record';
+/** A list of evidence, which is its own source. */
+export const itself = 'itself';
 
 export interface ContentsEntry {
   number: string;
@@ -41,7 +45,7 @@ export class Writer {
 
   /** "[E-3]", "[record]" for what the record of actions holds, nothing for a list of evidence itself, or the words that say that there is none. */
   cite(evidence: Citation): string {
-    if (evidence === 'itself') return '';
+    if (evidence === itself) return '';
     return evidence === null ? '[not evidenced]' : `[${evidence}]`;
   }
 

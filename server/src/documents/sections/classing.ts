@@ -1,4 +1,4 @@
-import type { BinnedCharacteristic, Characteristic } from '@tallystone/contracts/specification/types';
+import type { Characteristic } from '@tallystone/contracts/specification/types';
 import type { ResultCharacteristic } from '@tallystone/contracts/result/types';
 import { Ladder, logOdds } from '../charts/log-odds-ladder';
 import type { ClassedCharacteristic, DocumentInput } from '../input';
@@ -81,7 +81,7 @@ export function writeClassing(writer: Writer): void {
 
 function madeHow(characteristic: Characteristic | undefined, classed: ClassedCharacteristic | undefined): string {
   if (characteristic === undefined || characteristic.coding === 'linear') return characteristic === undefined ? '–' : 'as it is';
-  const made = (characteristic as BinnedCharacteristic).classing.made;
+  const made = characteristic.classing.made;
   if (made === 'by hand') return 'by hand';
   return classed && classed.edits.length > 0 ? `automatic, ${plural(classed.edits.length, 'edit')}` : 'automatic';
 }

@@ -9,10 +9,10 @@ import { judgementCaution } from './wording';
 
 /** The notches of a version's life, and the act that cuts each. */
 const life: readonly { caption: string; acts: readonly Signature['act'][] }[] = [
-  { caption: 'Frozen', acts: ['freeze'] },
-  { caption: 'Submitted', acts: ['submit'] },
-  { caption: 'Validation concluded', acts: ['conclude'] },
-  { caption: 'Documentation accepted', acts: ['accept'] },
+  { caption: 'Frozen', acts: ['frozen'] },
+  { caption: 'Submitted', acts: ['submitted'] },
+  { caption: 'Validation concluded', acts: ['concluded'] },
+  { caption: 'Documentation accepted', acts: ['documentation accepted'] },
 ];
 
 export function drawCover(sheet: Sheet, input: DocumentInput, fixedDate: Date): void {
@@ -138,7 +138,7 @@ function drawHalves(sheet: Sheet, input: DocumentInput): void {
     replication === undefined
       ? 'Replication: not evidenced.'
       : matches
-        ? `The two halves match: ${plural(replication.numbersCompared, 'number')} compared, largest difference ${significant(replication.largestDifference)} [${replication.evidence ?? 'not evidenced'}].`
+        ? `The two halves match: ${plural(replication.numbersCompared, 'number')} compared, largest difference between coefficients ${significant(replication.largestCoefficientDifference)} [${replication.evidence ?? 'not evidenced'}].`
         : `The two halves do not match: see section 15 [${replication.evidence ?? 'not evidenced'}].`;
   const top = sheet.y;
   sheet.tagged(

@@ -1,6 +1,6 @@
 import { evidenceFingerprint } from '../fingerprints';
 import { timeText } from '../number-texts';
-import type { Writer } from '../page/writer';
+import { fromRecord, itself, type Writer } from '../page/writer';
 
 /** 18 Change history and approvals. */
 export function writeHistory(writer: Writer): void {
@@ -8,7 +8,7 @@ export function writeHistory(writer: Writer): void {
   writer.beginSection('18', 'Change history and approvals');
   if (input.history === null || input.history.length === 0) writer.notEvidenced('Change history from the record of actions');
   else {
-    writer.table('From the record of actions', 'record', {
+    writer.table('From the record of actions', fromRecord, {
       columns: [
         { title: 'Act', align: 'right' },
         { title: 'When' },
@@ -38,7 +38,7 @@ export function writeAnnex(writer: Writer): void {
   writer.heading('Evidence index');
   if (input.evidence.length === 0) writer.notEvidenced('Evidence');
   else {
-    writer.table('Evidence of this version', 'itself', {
+    writer.table('Evidence of this version', itself, {
       columns: [{ title: 'No.' }, { title: 'What', grow: 1 }, { title: 'SHA-256' }],
       rows: input.evidence.map((item) => ({
         cells: [item.number, `${item.title}\n${item.madeBy}, ${timeText(item.madeAt)}`, item.sha256],

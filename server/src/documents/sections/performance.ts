@@ -3,7 +3,7 @@ import { rateInterval } from '@tallystone/numeric/metrics/intervals';
 import { drawCalibration } from '../charts/calibration';
 import { drawScoreDistribution } from '../charts/score-distribution';
 import { area, fixed, intervalText, percent, plural, pValue, rate, significant, timeText, whole } from '../number-texts';
-import type { Writer } from '../page/writer';
+import { fromRecord, type Writer } from '../page/writer';
 import { aucWithInterval, bandText, byPartition, isCovered, partitionLabel, partitions, stabilityReading } from './wording';
 
 /** 11 Performance. */
@@ -87,7 +87,7 @@ function writeOpenings(writer: Writer): void {
   );
   if (outOfTime.covered) writer.caution('Out-of-time figures are covered and are not printed.');
   if (outOfTime.openings.length > 0) {
-    writer.table('Openings of the out-of-time figures', 'record', {
+    writer.table('Openings of the out-of-time figures', fromRecord, {
       columns: [
         { title: 'When' },
         { title: 'Who', grow: 1 },

@@ -1,6 +1,6 @@
-import type { Writer } from '../page/writer';
+import { fromRecord, type Writer } from '../page/writer';
 import { area, fixed, percent, plural, significant, timeText, whole } from '../number-texts';
-import { actName, aucWithInterval, byPartition, judgementCaution, partitionLabel, partitions, penaltyName } from './wording';
+import { aucWithInterval, byPartition, judgementCaution, partitionLabel, partitions, penaltyName } from './wording';
 
 /** 1 Summary, status, conditions. */
 export function writeSummary(writer: Writer): void {
@@ -54,7 +54,7 @@ export function writeSummary(writer: Writer): void {
   writer.heading('Sign-offs');
   if (input.signatures.length === 0) writer.notEvidenced('Sign-offs');
   else {
-    writer.table('Acts on this version', 'record', {
+    writer.table('Acts on this version', fromRecord, {
       columns: [
         { title: 'Act' },
         { title: 'Person', grow: 1 },
@@ -65,7 +65,7 @@ export function writeSummary(writer: Writer): void {
       ],
       rows: input.signatures.map((signature) => ({
         cells: [
-          actName[signature.act],
+          signature.act,
           signature.name,
           signature.role,
           timeText(signature.at),
@@ -79,7 +79,7 @@ export function writeSummary(writer: Writer): void {
   writer.heading('Conditions');
   if (input.conditions.length === 0) writer.text('No condition has been set on this version.');
   else {
-    writer.table('Conditions of use', 'record', {
+    writer.table('Conditions of use', fromRecord, {
       columns: [
         { title: 'Condition', grow: 4 },
         { title: 'Kind' },

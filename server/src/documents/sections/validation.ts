@@ -1,7 +1,7 @@
 import { drawTwoHalves } from '../charts/two-halves';
 import type { Replication } from '../input';
 import { fixed, intervalText, percent, plural, significant, timeText, whole } from '../number-texts';
-import type { Writer } from '../page/writer';
+import { fromRecord, type Writer } from '../page/writer';
 
 /** 15 Validation report. */
 export function writeValidation(writer: Writer): void {
@@ -29,7 +29,7 @@ export function writeValidation(writer: Writer): void {
   if (validation?.findings == null) writer.notEvidenced('Findings');
   else if (validation.findings.length === 0) writer.text('The validator has raised no finding.');
   else {
-    writer.table('Findings', 'record', {
+    writer.table('Findings', fromRecord, {
       columns: [
         { title: 'No.' },
         { title: 'Finding', grow: 4 },
@@ -84,29 +84,37 @@ function writeReplication(writer: Writer, replication: Replication): void {
     ['Made by', `${replication.by}, ${timeText(replication.at)}; ${replication.solver}`],
     [
       'Numbers',
-      `${plural(replication.numbersCompared, 'number')} compared, ${whole(replication.numbersDiffering)} beyond the tolerance; largest difference ${significant(replication.largestDifference)}`,
+      `${plural(replication.numbersCompared, 'number')} compared, ${whole(replication.numbersDiffering)} beyond the tolerance`,
     ],
+    ['Coefficients', `largest difference ${significant(replication.largestCoefficientDifference)}`],
+    ['Points', `largest difference ${significant(replication.largestPointsDifference)}`],
     [
       'Integer scores',
-      `${plural(replication.scoresCompared, 'score')} compared, ${replication.scoresDiffering === 0 ? 'all equal' : `${whole(replication.scoresDiffering)} not equal`}`,
+      replication.integerScoresEqual === null ? '' : replication.integerScoresEqual ? 'equal throughout' : 'not equal',
     ],
     ['Specification', hashText(replication.specificationSha256, input.result.specificationSha256)],
     ['Data file', hashText(replication.dataSha256, input.result.dataSha256)],
     ['Result', replication.resultSha256 ?? ''],
   ]);
-  if (replication.rows.length === 0) return;
-  writer.table('Numbers of both halves beside each other', replication.evidence, {
+  if (replication.coefficients.length === 0) return;
+  const theirs = new Map(replication.coefficients.map((entry) => [entry.column, entry.coefficient]));
+  const mine = input.result.characteristics.filter(
+    (entry) => entry.coefficient !== null && (entry.coefficient !== 0 || (theirs.get(entry.column) ?? 0) !== 0),
+  );
+  const row = (name: string, own: number, other: number | null): { cells: string[] } => ({
+    cells: [name, fixed(own, 9), fixed(other, 9), other === null ? '–' : significant(Math.abs(own - other))],
+  });
+  writer.table('Coefficients beside each other', replication.evidence, {
     columns: [
       { title: 'Number', grow: 1 },
       { title: 'The fit', align: 'right' },
       { title: 'Its replication', align: 'right' },
       { title: 'Difference', align: 'right' },
-      { title: 'Meets' },
     ],
-    rows: replication.rows.map((row) => ({
-      cells: [row.label, fixed(row.fit, 9), fixed(row.replication, 9), significant(row.difference), row.meets ? 'yes' : 'no'],
-      tone: row.meets ? undefined : ('strong' as const),
-    })),
+    rows: [
+      row('Intercept', input.result.intercept, replication.intercept),
+      ...mine.map((entry) => row(writer.label(entry.column), entry.coefficient ?? 0, theirs.get(entry.column) ?? null)),
+    ],
   });
 }
 

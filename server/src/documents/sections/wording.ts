@@ -1,5 +1,5 @@
 import type { PartitionName } from '@tallystone/contracts/result/types';
-import type { DocumentInput, Signature } from '../input';
+import type { DocumentInput } from '../input';
 import { area, fixed, intervalText, significant } from '../number-texts';
 
 export const partitions: readonly PartitionName[] = ['development', 'holdOut', 'outOfTime'];
@@ -42,16 +42,6 @@ export function penaltyName(mixing: number): string {
   if (mixing === 0) return 'L2 (ridge)';
   return `elastic net, mixing ${significant(mixing)}`;
 }
-
-export const actName: Record<Signature['act'], string> = {
-  freeze: 'frozen',
-  submit: 'submitted',
-  withdraw: 'withdrawn',
-  start: 'validation started',
-  conclude: 'concluded',
-  accept: 'documentation accepted',
-  return: 'documentation returned',
-};
 
 export const ruleName = {
   value: 'stated value',

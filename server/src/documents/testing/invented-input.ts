@@ -2,10 +2,6 @@ import { parseSpecification } from '@tallystone/contracts/specification/schema';
 import type { DocumentInput } from '../input';
 import { characteristic, hash, inventedResult, wave } from './invented-result';
 
-/**
- * An input for specs, invented in the scenario of Saltmarsh Mutual: numbers of the right kind and size that hang together (WOE from counts, points from
- * WOE), made by formula, so that it is the same each time. `characteristics` says how many; those past the named ones are called "Column n".
- */
 function inventedSpecification(count: number): DocumentInput['specification'] {
   const parsed = parseSpecification({
     format: 'tallystone-specification',
@@ -29,6 +25,10 @@ function inventedSpecification(count: number): DocumentInput['specification'] {
   return parsed.specification;
 }
 
+/**
+ * An input for specs, invented in the scenario of Saltmarsh Mutual: numbers of the right kind and size that hang together (WOE from counts, points from
+ * WOE), made by formula, so that it is the same each time. `count` says how many characteristics; those past the named ones are called "Column n".
+ */
 export function inventedInput(count = 12): DocumentInput {
   const result = inventedResult(count);
   const specification = inventedSpecification(count);
@@ -62,9 +62,9 @@ export function inventedInput(count = 12): DocumentInput {
       frozenAt: '2026-11-20T10:15:00.000Z',
     },
     signatures: [
-      { act: 'freeze', name: modeller, role: 'modeller', at: '2026-11-20T10:15:00.000Z', statement: null, sequence: 212 },
+      { act: 'frozen', name: modeller, role: 'modeller', at: '2026-11-20T10:15:00.000Z', statement: null, sequence: 212 },
       {
-        act: 'submit',
+        act: 'submitted',
         name: modeller,
         role: 'modeller',
         at: '2026-11-21T09:00:00.000Z',
@@ -72,7 +72,7 @@ export function inventedInput(count = 12): DocumentInput {
         sequence: 218,
       },
       {
-        act: 'conclude',
+        act: 'concluded',
         name: validator,
         role: 'validator',
         at: '2026-11-26T16:40:00.000Z',
@@ -292,24 +292,14 @@ export function inventedInput(count = 12): DocumentInput {
         matches: true,
         numbersCompared: 1482,
         numbersDiffering: 0,
-        largestDifference: 2.1e-13,
-        scoresCompared: 17032,
-        scoresDiffering: 0,
+        largestCoefficientDifference: 2.1e-13,
+        largestPointsDifference: 7.6e-12,
+        integerScoresEqual: true,
         specificationSha256: hash('specification'),
         dataSha256: hash('data'),
         resultSha256: hash('replicated result'),
-        rows: [
-          { label: 'Intercept', fit: 2.1, replication: 2.1, difference: 0, meets: true },
-          ...result.characteristics
-            .filter(({ coefficient }) => coefficient !== 0)
-            .map(({ column, coefficient }) => ({
-              label: `Coefficient of ${column}`,
-              fit: coefficient,
-              replication: coefficient,
-              difference: 0,
-              meets: true,
-            })),
-        ],
+        intercept: 2.1,
+        coefficients: result.characteristics.map(({ column, coefficient }) => ({ column, coefficient: coefficient ?? 0 })),
       },
     ],
     validation: {
