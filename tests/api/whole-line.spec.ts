@@ -64,6 +64,7 @@ describe('the whole line on the Statlog German Credit data', () => {
       partition: { by: 'seed', seed: 1, holdOutShare: 0.3, outOfTime: null },
     };
     const saved = await modeller.put(`${sample.path}/draft`).set('If-Match', headers.etag).send(content).expect(200);
+    expect(saved.body.problems).toEqual([]);
     const started = await modeller.post(`${sample.path}/definitions`).send({ revision: saved.body.revision as number }).expect(202);
     const run = await modeller.ended(started.body.id as string);
     expect(run.problem).toBeNull();
