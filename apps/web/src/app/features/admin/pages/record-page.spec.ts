@@ -36,6 +36,14 @@ describe('RecordPage', () => {
     await harness.fixture.whenStable();
   }
 
+  /** Lets a press take effect without waiting for the answer that it asks for. */
+  async function pressed(label: string): Promise<void> {
+    [...page().querySelectorAll('button')].find((button) => button.textContent?.trim() === label)?.click();
+    await new Promise((resolve) => setTimeout(resolve));
+    harness.fixture.detectChanges();
+    await new Promise((resolve) => setTimeout(resolve));
+  }
+
   async function answer(entries: RecordEntry[], next: number | null): Promise<URLSearchParams> {
     const request = server.expectOne((asked) => asked.url === '/api/record');
     request.flush({ entries, next });
@@ -72,13 +80,11 @@ describe('RecordPage', () => {
 
   it('goes to older entries by key, and starts again when the filter changes', async () => {
     await answer([entry(12), entry(11)], 11);
-    [...page().querySelectorAll('button')].find((button) => button.textContent?.includes('Older entries'))?.click();
-    await settled();
+    await pressed('Older entries');
     const older = await answer([entry(10, { withheld: true, before: null, after: null })], null);
     expect(older.get('before')).toBe('11');
     expect(page().textContent).toContain('is not open to you');
-    [...page().querySelectorAll('button')].find((button) => button.textContent === 'Admin')?.click();
-    await settled();
+    await pressed('Admin');
     const narrowed = await answer([], null);
     expect(narrowed.get('actorId')).toBe('p1');
     expect(narrowed.has('before')).toBe(false);
