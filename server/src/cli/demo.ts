@@ -1,6 +1,10 @@
 import { readConfig } from '../config/environment';
 import { openContext } from '../context';
+import { ensureDemoBinning } from '../demo/binnings';
+import { ensureDemoModel } from '../demo/models';
 import { demoPeople, ensureDemoPeople } from '../demo/people';
+import { stopDemoWorker } from '../demo/run-to-end';
+import { ensureDemoSample } from '../demo/samples';
 import { createLog } from '../logging/log';
 import { stopThreads } from '../threads/run-in-thread';
 
@@ -12,12 +16,16 @@ import { stopThreads } from '../threads/run-in-thread';
 const config = readConfig(process.env);
 const context = await openContext(config, createLog(config.logLevel === 'info' ? 'warn' : config.logLevel));
 try {
-  await ensureDemoPeople(context);
+  const people = await ensureDemoPeople(context);
+  const model = await ensureDemoModel(context, people.modeller);
+  const { definitionId } = await ensureDemoSample(context, model, people.modeller);
+  await ensureDemoBinning(context, model, people.modeller, definitionId);
   console.log(JSON.stringify({ signIns: demoPeople.map(({ role, email, password }) => ({ role, email, password })) }));
 } catch (error) {
   console.error(error instanceof Error ? error.message : error);
   process.exitCode = 1;
 } finally {
+  await stopDemoWorker();
   await stopThreads();
   await context.close();
 }

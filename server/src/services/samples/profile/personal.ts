@@ -25,6 +25,8 @@ const identifierName =
 const nearUnique = 0.95;
 /** Fewer rows than this say nothing about uniqueness. */
 const enoughRows = 30;
+/** As many different values, shared by all, say something about applicants ("telephone": yes, no) and identify none of them. */
+const sharedValues = 20;
 
 /**
  * Whether a column identifies people: decided on the first segment, before anything of it is stored, so that what identifies is never kept
@@ -53,9 +55,10 @@ export function personalColumn(
   const spoken = words(name);
   if (emails * 2 > distinct)
     return { kind: 'email', finding: `${percent(emails / distinct)} of its values are e-mail addresses.` };
-  if (personName.test(spoken) && numbers === 0)
+  const shared = rows >= enoughRows && distinct <= sharedValues;
+  if (!shared && personName.test(spoken) && numbers === 0)
     return { kind: 'name', finding: 'Its heading says that it holds names of people.' };
-  if (nationalNumber.test(spoken))
+  if (!shared && nationalNumber.test(spoken))
     return { kind: 'identifier', finding: 'Its heading says that it holds numbers or addresses of people.' };
   const unique = rows >= enoughRows && distinct >= nearUnique * rows;
   if (unique && identifierName.test(spoken))

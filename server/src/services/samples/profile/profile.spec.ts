@@ -91,6 +91,10 @@ describe('what the quality table says of a column', () => {
     const withCode = profile([...many(300, (k) => String(k % 120)), ...many(20, () => '-999')]);
     expect(withCode.specialSuspects.map(({ value }) => value)).toEqual(['-999']);
     expect(profile(many(1000, (k) => String(k % 100))).specialSuspects).toEqual([]);
+    // Few values, as a count of arrears has.
+    const few = profile(many(300, (k) => ['0', '1', '2', '-999', '-996'][k % 5]));
+    expect(few.specialSuspects.map(({ value }) => value)).toEqual(['-999', '-996']);
+    expect(profile(many(300, (k) => ['-1', '0', '1'][k % 3])).specialSuspects).toEqual([]);
     expect(
       profile([...many(300, (k) => String(k % 40)), ...many(20, () => '9999'), ...many(9, () => '9998')]).specialSuspects[0]
         .value,
@@ -100,6 +104,7 @@ describe('what the quality table says of a column', () => {
   it('suggests roles from the headings of a lender', () => {
     const flags = ['0', '1', '0', '0', '1'];
     expect(profile(flags, 'bad').suggestedRole).toBe('outcome');
+    expect(profile(flags, 'outcome_12m').suggestedRole).toBe('outcome');
     expect(profile(['declined', 'accepted'], 'decision').suggestedRole).toBe('decision');
     expect(profile(['2024-01-01', '2024-01-02'], 'applied_on').suggestedRole).toBe('application date');
     expect(profile(['f', 'm'], 'gender')).toMatchObject({ suggestedProtected: true });

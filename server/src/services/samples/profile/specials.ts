@@ -8,24 +8,24 @@ import { thin } from './kind';
  */
 export function suspectSpecials(numbers: readonly CountedNumber[]): ColumnProfile['specialSuspects'] {
   const rows = numbers.reduce((total, { count }) => total + count, 0);
-  if (numbers.length < 8) return [];
   const enough = Math.max(5, rows * 0.0005);
   const suspects: ColumnProfile['specialSuspects'] = [];
   const consider = (end: 'smallest' | 'largest'): void => {
     const rest = [...numbers];
-    for (let round = 0; round < 5 && rest.length >= 8; round++) {
+    for (let round = 0; round < 5; round++) {
       const one = end === 'smallest' ? rest.shift() : rest.pop();
-      if (!one) return;
       // Codes come in runs (9997, 9998, 9999): the distance that counts is that to the nearest value of another kind.
-      const others = rest.filter(({ value }) => Math.abs(value - one.value) > 3);
-      if (others.length < 7) return;
+      const others = one ? rest.filter(({ value }) => Math.abs(value - one.value) > 3) : [];
+      if (!one || one.count < enough || others.length === 0) return;
       const next = end === 'smallest' ? others[0].value : others[others.length - 1].value;
       const spread = others[others.length - 1].value - others[0].value;
       const gap = Math.abs(next - one.value);
       const nines = /^-?(9+[6-9]|8{3,})(\.0+)?$/.test(one.text);
-      const negative = one.value < 0 && rest.every(({ value }) => value >= 0 || isCodeLike(value));
-      const far = gap > spread * 0.5;
-      if (one.count < enough || !(nines || (negative && Number.isInteger(one.value)) || (far && isCodeLike(one.value)))) return;
+      const negative = one.value < 0 && Number.isInteger(one.value) && rest.every(({ value }) => value >= 0 || isCodeLike(value));
+      const far = gap > spread * 0.5 && isCodeLike(one.value);
+      // Among few values only what is written like a code can be told from a scale.
+      const few = others.length < 7;
+      if (few ? !(negative && nines) : !(nines || negative || far)) return;
       // A run of whole numbers that simply ends at 99 is a range, not a code.
       if (nines && !negative && gap <= Math.max(1, spread * 0.05)) return;
       const reason = negative
@@ -44,5 +44,5 @@ export function suspectSpecials(numbers: readonly CountedNumber[]): ColumnProfil
 /** Spelled as people spell codes: 99, 888, 7777, 9000, -1 to -9. */
 function isCodeLike(value: number): boolean {
   if (!Number.isInteger(value)) return false;
-  return (value < 0 && value >= -9) || /^-?(9{2,}|8{2,}|7{2,}|1{3,}|\d0{3,})$/.test(String(value));
+  return (value < 0 && value >= -9) || /^-?(9+[6-9]|9{2,}|8{2,}|7{2,}|1{3,}|\d0{3,})$/.test(String(value));
 }

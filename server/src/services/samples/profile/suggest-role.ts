@@ -42,7 +42,7 @@ const single = (heading: RegExp, mostValues: number | null, kinds: readonly Colu
 const byHeading: readonly [ColumnRole, ReturnType<typeof single>, string][] = [
   [
     'outcome',
-    single(/^(bad|good bad|good|outcome|default|defaulted|default flag|bad flag|target|performance)$/, 10, null),
+    single(/^(bad|good bad|good|default|defaulted|default flag|bad flag|target|performance)$|\boutcome\b/, 10, null),
     'Its heading names an outcome and it has few values.',
   ],
   [

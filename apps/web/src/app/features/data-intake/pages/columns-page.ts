@@ -72,7 +72,7 @@ interface Row {
             <button
               class="name"
               type="button"
-              [attr.aria-pressed]="row.profile.column === chosen()?.profile.column"
+              [attr.aria-pressed]="isSelected(row)"
               (click)="choose(row.profile.column)"
             >
               {{ row.profile.column }}
