@@ -202,7 +202,7 @@ describe.each(reference.fits.map((fit, index) => ({ index, fit })))('fit $index'
     expect(result.bands.map((band) => ({ n: band.holdOut.rows, bad: band.holdOut.bads }))).toEqual(fit.test_band_table);
     // The file has null where a band is empty on both sides; here such a band adds nothing.
     const { train_counts, test_counts } = fit.psi_score;
-    const psi = fit.psi_score.psi as number | null;
+    const psi: number | null = fit.psi_score.psi;
     expectNear(result.psi.holdOut ?? NaN, psi ?? stabilityOf(train_counts, test_counts), 1e-10, 'PSI');
     expect(result.psi.outOfTime).toBeNull();
   });

@@ -44,7 +44,7 @@ export function parseSpecification(input: unknown): { specification: Specificati
     if (parsed.success) sound[key] = parsed.data;
     else problems.push(...problemsOf(parsed.error.issues, [key]));
   }
-  for (const finding of acrossSections(sound as Partial<Specification>)) {
+  for (const finding of acrossSections(sound)) {
     problems.push({ code: finding.code, message: finding.message, where: { path: pathText(finding.path) } });
   }
   return problems.length > 0 ? { problems } : { specification: sound as unknown as Specification };

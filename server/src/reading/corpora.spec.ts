@@ -113,13 +113,13 @@ describe('generated files', () => {
         }
         if (file.problems.length > 0) return;
         accepted++;
-        const oracle = parse(`x,y\n${text}`, {
+        const oracle: string[][] = parse(`x,y\n${text}`, {
           trim,
           record_delimiter: ['\r\n', '\n', '\r'],
           relax_column_count: true,
           relax_quotes: true,
           skip_empty_lines: false,
-        }) as string[][];
+        });
         while (oracle.length > 0 && oracle[oracle.length - 1].length === 1 && oracle[oracle.length - 1][0] === '') oracle.pop();
         expect(rowsOf(file)).toEqual(oracle.slice(1));
       }),

@@ -74,7 +74,9 @@ function guessEncoding(bytes: Buffer): Encoding {
   let even = 0;
   let odd = 0;
   sample.forEach((byte, index) => {
-    if (byte === 0) index % 2 === 0 ? even++ : odd++;
+    if (byte !== 0) return;
+    if (index % 2 === 0) even++;
+    else odd++;
   });
   // ASCII characters in UTF-16 have a zero in every second byte.
   if (odd > sample.length / 5 && even === 0) return 'utf-16le';

@@ -70,8 +70,9 @@ describe('comparison', () => {
 describe('fingerprint', () => {
   it('is SHA-256 over RFC 8785 canonical JSON', () => {
     // The numbers are those of RFC 8785, section 3.2.2, and its key order rule 3.2.3 (both from memory).
+    const numbers = JSON.parse('[333333333.33333329, 1E30, 4.50, 2e-3, 0.000000000000000000000000001, -0]') as number[];
     const value = {
-      numbers: [333333333.33333329, 1e30, 4.5, 2e-3, 0.000000000000000000000000001, -0],
+      numbers,
       '€': 1,
       '\r': 2,
       '1': 3,

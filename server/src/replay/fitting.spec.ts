@@ -291,7 +291,7 @@ describe('choosing the penalty', () => {
   });
 
   it('names bin and fold where smoothing is off and a training part has an empty cell', () => {
-    const rare = {
+    const rare: Sample = {
       ...sample,
       home: sample['home'].map((home, row) => (sample['part'][row] === 'dev' && home === 'other' ? 'rent' : home)),
     };

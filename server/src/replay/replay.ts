@@ -1,5 +1,5 @@
 import type { Result } from '@tallystone/contracts/result/types';
-import type { Specification } from '@tallystone/contracts/specification/types';
+import type { RowTest, Specification } from '@tallystone/contracts/specification/types';
 import { codeCharacteristics } from './coding';
 import { fitCoded, type FittedModel, type FitRequest, type Method } from './fit';
 import { prepare } from './prepare';
@@ -56,10 +56,10 @@ export function replay(request: ReplayRequest): Replayed {
 export function columnsRead(spec: Specification): { all: string[]; numbersOnly: Set<string> } {
   const text = new Set<string>([spec.outcome.column]);
   const numbers = new Set<string>();
-  const visit = (rule: Specification['exclusions'][number] | object): void => {
-    if ('all' in rule) (rule.all as object[]).forEach(visit);
-    else if ('any' in rule) (rule.any as object[]).forEach(visit);
-    else if ('column' in rule) text.add(rule.column as string);
+  const visit = (rule: RowTest): void => {
+    if ('all' in rule) rule.all.forEach(visit);
+    else if ('any' in rule) rule.any.forEach(visit);
+    else text.add(rule.column);
   };
   spec.exclusions.forEach(visit);
   if (spec.declined !== null) text.add(spec.declined.column);
