@@ -22,6 +22,11 @@ export class EventParser {
   private data: string[] = [];
   private retryMs: number | null = null;
 
+  /** What to come back with: an id counts even when nothing was sent with it. */
+  get lastEventId(): string | null {
+    return this.id;
+  }
+
   push(piece: string): StreamMessage[] {
     const messages: StreamMessage[] = [];
     const text = this.rest + piece;

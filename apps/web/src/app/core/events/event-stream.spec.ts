@@ -18,14 +18,14 @@ describe('EventStream', () => {
   afterEach(() => vi.useRealTimers());
 
   it('comes back after a break and asks for what it missed', async () => {
-    const { fetch, asked } = server(['id: 41\nevent: run\ndata: {"n":1}\n\n', 503, 'id: 42\nevent: run\ndata: {"n":2}\n\n']);
+    const { fetch, asked } = server(['retry: 2000\nid: 40\n: open\n\n', 'id: 41\nevent: run\ndata: {"n":1}\n\n', 503, 'id: 42\nevent: run\ndata: {"n":2}\n\n']);
     TestBed.configureTestingModule({ providers: [{ provide: STREAM_FETCH, useValue: fetch }] });
     const stream = TestBed.inject(EventStream);
     const heard: unknown[] = [];
     const listening = stream.of('run').subscribe((event) => heard.push(event));
     await vi.advanceTimersByTimeAsync(20_000);
     expect(heard).toEqual([{ n: 1 }, { n: 2 }]);
-    expect(asked.slice(0, 4)).toEqual([null, '41', '41', '42']);
+    expect(asked.slice(0, 5)).toEqual([null, '40', '41', '41', '42']);
     expect(stream.state()).toBe('open');
     listening.unsubscribe();
     expect(stream.state()).toBe('closed');

@@ -1,5 +1,5 @@
 import { Injectable, InjectionToken, inject, signal } from '@angular/core';
-import { Observable, defer, filter, map, retry, share, tap, timer } from 'rxjs';
+import { Observable, defer, filter, map, retry, share, timer } from 'rxjs';
 import { EventParser, type StreamMessage } from './event-parser';
 
 /** How the stream is read; a browser's fetch, or a test's. */
@@ -32,7 +32,6 @@ export class EventStream {
   readonly state = this.current.asReadonly();
 
   readonly messages: Observable<StreamMessage> = defer(() => this.connect()).pipe(
-    tap((message) => (this.lastEventId = message.id ?? this.lastEventId)),
     retry({
       delay: (error: unknown, attempt) => {
         if (error instanceof StreamRefused && final.has(error.status)) throw error;
@@ -79,7 +78,9 @@ export class EventStream {
     for (;;) {
       const { done, value } = await reader.read();
       if (done) return;
-      for (const message of parser.push(value)) deliver(message);
+      const messages = parser.push(value);
+      this.lastEventId = parser.lastEventId ?? this.lastEventId;
+      for (const message of messages) deliver(message);
     }
   }
 }
