@@ -92,7 +92,7 @@ export function writeData(writer: Writer): void {
       );
     }
   }
-  writer.authorTexts(6, ['Suitability of sources']);
+  writer.authorTexts(6, ['Suitability of the sources']);
 }
 
 function writeSpecialCodes(writer: Writer): void {

@@ -129,8 +129,5 @@ export function writeFinalModel(writer: Writer): void {
     });
   }
   writer.caution(judgementCaution);
-  writer.authorTexts(10, [
-    'Business sense of each characteristic',
-    ...(flipped.length > 0 ? ['Reasons for sign exceptions'] : []),
-  ]);
+  writer.authorTexts(10, ['Business sense of each characteristic', ...(flipped.length > 0 ? ['Sign exceptions'] : [])]);
 }

@@ -62,7 +62,7 @@ export function writePerformance(writer: Writer): void {
   writeComparisons(writer);
   writeDistributions(writer);
   writeBands(writer);
-  writer.authorTexts(11, ['Interpretation']);
+  writer.authorTexts(11, ['Interpretation', 'Limitations']);
 }
 
 function inWords(writer: Writer): string {

@@ -16,7 +16,7 @@ export function writePurpose(writer: Writer): void {
     ['Intended use', model.intendedUse],
     ['Prohibited use', model.prohibitedUse],
   ]);
-  writer.authorTexts(2, ['Limitations']);
+  writer.authorTexts(2, []);
   writer.caution(
     'Use outside the stated product, population or jurisdiction has not been examined and is not supported by the figures in this document.',
   );
