@@ -13,6 +13,15 @@ import {
   type Place,
 } from '@tallystone/numeric/bench';
 
+interface PlaceRow {
+  readonly label: string;
+  readonly place: Place | 'neutral';
+  /** The choice that joins no bin. */
+  readonly apart: 'own' | 'neutral';
+  readonly apartLabel: string;
+  readonly move: (place: Place | 'neutral') => void;
+}
+
 /** Where special codes, missing values and unseen categories go: a bin of their own, or one of the others. */
 @Component({
   selector: 'ts-places',
@@ -57,23 +66,17 @@ export class Places {
     const coarse = this.coarse();
     const own = { apart: 'own' as const, apartLabel: 'A bin of its own' };
     const name = (place: Place | 'neutral'): string => (typeof place === 'number' ? coarse[place] : '');
-    const rows: {
-      label: string;
-      place: Place | 'neutral';
-      apart: 'own' | 'neutral';
-      apartLabel: string;
-      move: (place: never) => void;
-    }[] = fine.special.map((label, code) => ({
+    const rows: PlaceRow[] = fine.special.map((label, code) => ({
       label,
       place: bins.special[code],
       ...own,
-      move: (place: Place) => this.send(moveSpecial(fine, bins, code, place, name(place))),
+      move: (place) => place !== 'neutral' && this.send(moveSpecial(fine, bins, code, place, name(place))),
     }));
     rows.push({
       label: 'Missing values',
       place: bins.missing,
       ...own,
-      move: (place: Place) => this.send(moveMissing(bins, place, name(place))),
+      move: (place) => place !== 'neutral' && this.send(moveMissing(bins, place, name(place))),
     });
     if (bins.kind === 'categorical') {
       rows.push({
@@ -81,7 +84,7 @@ export class Places {
         place: bins.unseen,
         apart: 'neutral',
         apartLabel: 'Stay neutral: WOE 0',
-        move: (place: 'neutral' | number) => this.send(moveUnseen(bins, place, name(place))),
+        move: (place) => place !== 'own' && this.send(moveUnseen(bins, place, name(place))),
       });
     }
     return rows;
