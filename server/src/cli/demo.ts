@@ -1,10 +1,12 @@
 import { readConfig } from '../config/environment';
 import { openContext } from '../context';
 import { ensureDemoBinning } from '../demo/binnings';
+import { ensureDemoFits } from '../demo/fits';
 import { ensureDemoModel } from '../demo/models';
 import { demoPeople, ensureDemoPeople } from '../demo/people';
 import { stopDemoWorker } from '../demo/run-to-end';
 import { ensureDemoSample } from '../demo/samples';
+import { ensureDemoVersion } from '../demo/versions';
 import { createLog } from '../logging/log';
 import { stopThreads } from '../threads/run-in-thread';
 
@@ -19,7 +21,9 @@ try {
   const people = await ensureDemoPeople(context);
   const model = await ensureDemoModel(context, people.modeller);
   const { definitionId } = await ensureDemoSample(context, model, people.modeller);
-  await ensureDemoBinning(context, model, people.modeller, definitionId);
+  const { binningId } = await ensureDemoBinning(context, model, people.modeller, definitionId);
+  const fit = await ensureDemoFits(context, model, people.modeller, binningId);
+  await ensureDemoVersion(context, fit, people.modeller);
   console.log(JSON.stringify({ signIns: demoPeople.map(({ role, email, password }) => ({ role, email, password })) }));
 } catch (error) {
   console.error(error instanceof Error ? error.message : error);
