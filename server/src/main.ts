@@ -24,13 +24,16 @@ const drain = 30_000;
 
 async function main(): Promise<void> {
   const unknown = [...services].filter((name) => name !== 'web' && name !== 'worker');
-  if (unknown.length > 0) throw new ConfigProblem(`--services: there is no service ${unknown.join(', ')}; known are web and worker`);
+  if (unknown.length > 0)
+    throw new ConfigProblem(`--services: there is no service ${unknown.join(', ')}; known are web and worker`);
   const config = readConfig(process.env);
   const log = createLog(config.logLevel);
-  const sink = config.demo && config.mail.host === null && services.has('worker') ? await openSink(join(config.dataFolder, 'mail')) : null;
+  const sink =
+    config.demo && config.mail.host === null && services.has('worker') ? await openSink(join(config.dataFolder, 'mail')) : null;
   const context = await openContext(sink ? withMailTo(config, sink) : config, log);
   const state = await readiness(context.sequelize);
-  if (state !== 'ok') throw new ConfigProblem('DATABASE_URL: the migrations of this database are behind; run the migrate command first');
+  if (state !== 'ok')
+    throw new ConfigProblem('DATABASE_URL: the migrations of this database are behind; run the migrate command first');
   const head = await recordHead(context.pool);
   log.info({ head }, 'head of the record of actions');
 
@@ -39,7 +42,11 @@ async function main(): Promise<void> {
   const metrics = config.metricsPort > 0 ? await startMetrics(config.metricsPort) : null;
   const url = server ? addressOf(config, server) : undefined;
   const token = server ? await ensureSetUpToken(context) : null;
-  if (token !== null) log.info({ file: join(config.dataFolder, 'set-up-token') }, 'the first admin is still to be made; the one-time token lies in the file');
+  if (token !== null)
+    log.info(
+      { file: join(config.dataFolder, 'set-up-token') },
+      'the first admin is still to be made; the one-time token lies in the file',
+    );
 
   stopWhenAsked(log, async () => {
     await stop({ context, server, worker, metrics, sink });
@@ -53,7 +60,8 @@ function listen(context: Context): Promise<Server> {
   return new Promise((resolve, reject) => {
     const server = buildApp(context).listen(port, host, (error?: Error) => {
       if (!error) resolve(server);
-      else if ((error as NodeJS.ErrnoException).code === 'EADDRINUSE') reject(new ConfigProblem(`PORT: ${port} is in use by another program`));
+      else if ((error as NodeJS.ErrnoException).code === 'EADDRINUSE')
+        reject(new ConfigProblem(`PORT: ${port} is in use by another program`));
       else reject(error);
     });
     // Slow clients: headers within 20 s, a quiet connection is closed after 65 s; uploads may take as long as they send.
@@ -69,7 +77,10 @@ function addressOf(config: Config, server: Server): string {
   return `http://${config.host === '127.0.0.1' ? 'localhost' : config.host}:${port}/`;
 }
 
-const withMailTo = (config: Config, sink: Sink): Config => ({ ...config, mail: { ...config.mail, host: '127.0.0.1', port: sink.port } });
+const withMailTo = (config: Config, sink: Sink): Config => ({
+  ...config,
+  mail: { ...config.mail, host: '127.0.0.1', port: sink.port },
+});
 
 interface Running {
   readonly context: Context;
@@ -117,8 +128,13 @@ function stopWhenAsked(log: Log, work: () => Promise<void>): void {
 }
 
 main().catch((error: unknown) => {
-  const message = error instanceof ConfigProblem ? error.message : error instanceof Error ? (error.stack ?? error.message) : String(error);
+  const message =
+    error instanceof ConfigProblem ? error.message : error instanceof Error ? (error.stack ?? error.message) : String(error);
   process.stderr.write(`${message}\n`);
-  if (process.send) process.send({ type: 'failed', message: error instanceof ConfigProblem ? message : `The server did not start: ${message}` }, () => process.exit(1));
+  if (process.send)
+    process.send(
+      { type: 'failed', message: error instanceof ConfigProblem ? message : `The server did not start: ${message}` },
+      () => process.exit(1),
+    );
   else process.exit(1);
 });

@@ -9,7 +9,10 @@ const web = mkdtempSync(join(tmpdir(), 'tallystone-web-'));
 let server: IntakeServer;
 
 beforeAll(async () => {
-  writeFileSync(join(web, 'index.html'), '<!doctype html><html><body><ts-root></ts-root><script src="main-ABCDEF12.js" type="module"></script></body></html>');
+  writeFileSync(
+    join(web, 'index.html'),
+    '<!doctype html><html><body><ts-root></ts-root><script src="main-ABCDEF12.js" type="module"></script></body></html>',
+  );
   writeFileSync(join(web, 'main-ABCDEF12.js'), 'export {};');
   mkdirSync(join(web, 'media'));
   writeFileSync(join(web, 'favicon.svg'), '<svg xmlns="http://www.w3.org/2000/svg"/>');
@@ -21,14 +24,18 @@ afterAll(async () => {
 });
 
 const policyOf = (headers: Record<string, string>): Map<string, string[]> =>
-  new Map(headers['content-security-policy'].split(';').map((part) => [part.trim().split(' ')[0], part.trim().split(' ').slice(1)]));
+  new Map(
+    headers['content-security-policy'].split(';').map((part) => [part.trim().split(' ')[0], part.trim().split(' ').slice(1)]),
+  );
 
 describe('pages', () => {
   it('have a policy without inline code, and a nonce of their own in the policy and on the root element', async () => {
-    const [first, second] = await Promise.all(['/', '/models/123/fit'].map((path) => supertest(server.app).get(path).expect(200)));
+    const [first, second] = await Promise.all(
+      ['/', '/models/123/fit'].map((path) => supertest(server.app).get(path).expect(200)),
+    );
     const nonces = [first, second].map(({ text }) => /<ts-root ngCspNonce="([^"]+)">/.exec(text)![1]);
     expect(nonces[0]).not.toBe(nonces[1]);
-    const policy = policyOf(first.headers as Record<string, string>);
+    const policy = policyOf(first.headers);
     expect(policy.get('default-src')).toEqual(["'none'"]);
     expect(policy.get('script-src')).toEqual(["'self'"]);
     expect(policy.get('style-src')).toEqual(["'self'", `'nonce-${nonces[0]}'`]);
@@ -49,7 +56,9 @@ describe('pages', () => {
     expect(script.headers['x-content-type-options']).toBe('nosniff');
     expect((await supertest(server.app).get('/favicon.svg').expect(200)).headers['cache-control']).toBe('no-cache');
     await supertest(server.app).get('/main-00000000.js').expect(404);
-    await supertest(server.app).get('/..%2f..%2fetc/passwd').expect((response) => expect(response.text).not.toContain('root:'));
+    await supertest(server.app)
+      .get('/..%2f..%2fetc/passwd')
+      .expect((response) => expect(response.text).not.toContain('root:'));
   });
 
   it('are not what the API answers with, whose policy lets nothing load', async () => {
@@ -60,7 +69,10 @@ describe('pages', () => {
   });
 
   it('over HTTPS have cookies that no other host can plant', async () => {
-    const secure = await IntakeServer.start({ worker: false, environment: { ORIGIN: 'https://tally.saltmarsh.example', TALLYSTONE_WEB: web } });
+    const secure = await IntakeServer.start({
+      worker: false,
+      environment: { ORIGIN: 'https://tally.saltmarsh.example', TALLYSTONE_WEB: web },
+    });
     try {
       const agent = supertest(secure.app);
       const { headers } = await agent.get('/').set('X-Forwarded-Proto', 'https').expect(200);

@@ -67,7 +67,10 @@ describe('the first admin', () => {
     await post('/api/set-up', { ...details, token: 'x'.repeat(43) }).expect(403);
     await post('/api/set-up', { ...details, token, roles: ['admin', 'modeller'] }).expect(422);
     // Two at once: one is made.
-    const both = await Promise.all([post('/api/set-up', { ...details, token }), post('/api/set-up', { ...details, email: 'second@saltmarsh.example', token })]);
+    const both = await Promise.all([
+      post('/api/set-up', { ...details, token }),
+      post('/api/set-up', { ...details, email: 'second@saltmarsh.example', token }),
+    ]);
     expect(both.map(({ status }) => status).sort()).toEqual([201, 409]);
     expect((await supertest(server.app).get('/api/set-up').expect(200)).body).toEqual({ open: false });
     expect(await ensureSetUpToken(server.context)).toBeNull();
@@ -83,7 +86,12 @@ describe('an invitation', () => {
   it('goes out by mail, is looked up, accepted once and signs in with the roles the admin chose', async () => {
     const asked = { name: 'Nadia New', email: 'Nadia@Saltmarsh.example', roles: ['modeller', 'validator'] };
     const { body } = await admin.post('/api/invitations').send(asked).expect(201);
-    expect(body).toMatchObject({ email: 'nadia@saltmarsh.example', state: 'open', mail: 'waiting', roles: ['modeller', 'validator'] });
+    expect(body).toMatchObject({
+      email: 'nadia@saltmarsh.example',
+      state: 'open',
+      mail: 'waiting',
+      roles: ['modeller', 'validator'],
+    });
     const letter = await waitFor(() => letters.find((text) => text.includes('To: nadia@saltmarsh.example')));
     const token = /invitation\/([\w-]{43})/.exec(letter.replaceAll('=\r\n', ''))![1];
     await waitFor(async () => ((await admin.get('/api/invitations')).body.invitations[0].mail === 'sent' ? true : undefined));
@@ -93,16 +101,24 @@ describe('an invitation', () => {
     expect(JSON.stringify((await owner.query('SELECT * FROM record')).rows)).not.toContain(token);
 
     const post = await stranger();
-    expect((await post('/api/invitations/look-up', { token }).expect(200)).body).toMatchObject({ name: 'Nadia New', email: 'nadia@saltmarsh.example' });
+    expect((await post('/api/invitations/look-up', { token }).expect(200)).body).toMatchObject({
+      name: 'Nadia New',
+      email: 'nadia@saltmarsh.example',
+    });
     const blocked = await post('/api/invitations/accept', { token, name: 'Nadia', password: 'nadia-saltmarsh-2024' }).expect(422);
     expect(blocked.body.problems[0].code).toBe('password-blocked');
     // What the invitation does not give cannot be taken.
     await post('/api/invitations/accept', { token, name: 'Nadia', password: testPassword, roles: ['admin'] }).expect(422);
-    const both = await Promise.all([1, 2].map(() => post('/api/invitations/accept', { token, name: 'Nadia Newcomer', password: testPassword })));
+    const both = await Promise.all(
+      [1, 2].map(() => post('/api/invitations/accept', { token, name: 'Nadia Newcomer', password: testPassword })),
+    );
     expect(both.map(({ status }) => status).sort()).toEqual([201, 404]);
     const nadia = new Visitor(supertest.agent(server.app), '');
     await nadia.enter('nadia@saltmarsh.example');
-    expect((await nadia.get('/api/session')).body.user).toMatchObject({ name: 'Nadia Newcomer', roles: ['modeller', 'validator'] });
+    expect((await nadia.get('/api/session')).body.user).toMatchObject({
+      name: 'Nadia Newcomer',
+      roles: ['modeller', 'validator'],
+    });
     await post('/api/invitations/look-up', { token }).expect(404);
   });
 
@@ -113,7 +129,14 @@ describe('an invitation', () => {
     expect((await admin.delete(`/api/invitations/${body.id}`).expect(200)).body.state).toBe('withdrawn');
     await admin.delete(`/api/invitations/${body.id}`).expect(409);
     await admin.post('/api/invitations').send(asked).expect(201);
-    expect((await admin.post('/api/invitations').send({ ...asked, email: 'nadia@saltmarsh.example' }).expect(409)).body.code).toBe('email-taken');
+    expect(
+      (
+        await admin
+          .post('/api/invitations')
+          .send({ ...asked, email: 'nadia@saltmarsh.example' })
+          .expect(409)
+      ).body.code,
+    ).toBe('email-taken');
   });
 
   it('runs out by the database’s clock', async () => {
@@ -131,27 +154,46 @@ describe('roles', () => {
     const worker = await server.signIn('wim', 'modeller');
     const path = `/api/people/${worker.personId}`;
     const read = await admin.get(path).expect(200);
-    expect(read.body).toMatchObject({ roles: ['modeller'], state: 'active', revision: 1, abilities: ['change-roles', 'disable'] });
+    expect(read.body).toMatchObject({
+      roles: ['modeller'],
+      state: 'active',
+      revision: 1,
+      abilities: ['change-roles', 'disable'],
+    });
     const change = (tag: string | null, body: object): supertest.Test => {
       const request = admin.put(`${path}/roles`);
       return (tag === null ? request : request.set('If-Match', tag)).send(body);
     };
     await change(null, { roles: ['auditor'], reason: 'moved' }).expect(428);
     await change('"7"', { roles: ['auditor'], reason: 'moved' }).expect(412);
-    const problems = (await change(read.headers.etag, { roles: ['auditor', 'auditor', 'king'], reason: ' ', extra: 1 }).expect(422)).body.problems;
+    const problems = (
+      await change(read.headers.etag, { roles: ['auditor', 'auditor', 'king'], reason: ' ', extra: 1 }).expect(422)
+    ).body.problems;
     expect(problems.map(({ where }: { where: { field: string } }) => where.field).sort()).toEqual(['extra', 'reason', 'roles.2']);
     const changed = await change(read.headers.etag, { roles: ['auditor', 'compliance'], reason: 'moved to audit' }).expect(200);
     expect(changed.body).toMatchObject({ roles: ['auditor', 'compliance'], revision: 2 });
     expect(changed.headers.etag).toBe('"2"');
     await worker.get('/api/sessions').expect(401);
-    const { rows } = await owner.query(`SELECT actor_name, before, after, reason FROM record WHERE action = 'person.roles-changed'`);
-    expect(rows).toEqual([expect.objectContaining({ before: { roles: ['modeller'] }, after: { roles: ['auditor', 'compliance'] }, reason: 'moved to audit' })]);
+    const { rows } = await owner.query(
+      `SELECT actor_name, before, after, reason FROM record WHERE action = 'person.roles-changed'`,
+    );
+    expect(rows).toEqual([
+      expect.objectContaining({
+        before: { roles: ['modeller'] },
+        after: { roles: ['auditor', 'compliance'] },
+        reason: 'moved to audit',
+      }),
+    ]);
   });
 
   it('of oneself are out of reach, whichever way', async () => {
     const me = (await admin.get('/api/session')).body.user.id as string;
     const { headers } = await admin.get(`/api/people/${me}`).expect(200);
-    const refused = await admin.put(`/api/people/${me}/roles`).set('If-Match', headers.etag).send({ roles: ['admin', 'validator'], reason: 'handy' }).expect(403);
+    const refused = await admin
+      .put(`/api/people/${me}/roles`)
+      .set('If-Match', headers.etag)
+      .send({ roles: ['admin', 'validator'], reason: 'handy' })
+      .expect(403);
     expect(refused.body.detail).toContain('their own roles');
     await admin.post(`/api/people/${me}/disable`).send({ reason: 'away' }).expect(403);
     expect((await admin.get('/api/session')).body.user.roles).toEqual(['admin']);
@@ -169,7 +211,9 @@ describe('roles', () => {
     expect(await demote(one, me)).toBe(200);
     const statuses = await Promise.all([demote(one, two.personId), demote(two, one.personId)]);
     expect(statuses).toContain(200);
-    const { rows } = await owner.query(`SELECT count(*)::int AS admins FROM person_roles r JOIN people p ON p.id = r.person_id WHERE role = 'admin' AND state = 'active'`);
+    const { rows } = await owner.query(
+      `SELECT count(*)::int AS admins FROM person_roles r JOIN people p ON p.id = r.person_id WHERE role = 'admin' AND state = 'active'`,
+    );
     expect(rows[0].admins).toBe(1);
     const left = (await one.get('/api/sessions')).status === 200 ? one : two;
     admin = left;

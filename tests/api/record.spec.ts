@@ -31,7 +31,13 @@ afterAll(async () => {
 
 const append = (name: string): Promise<{ sequence: number; hash: string }> =>
   inTransaction(server.context.sequelize, (tx) =>
-    appendRecord(tx, { actor: nobody(name), action: 'session.signed-out', entity: 'session', entityId: null, detail: { address: null } }),
+    appendRecord(tx, {
+      actor: nobody(name),
+      action: 'session.signed-out',
+      entity: 'session',
+      entityId: null,
+      detail: { address: null },
+    }),
   );
 
 describe('the record of actions', () => {
@@ -56,7 +62,13 @@ describe('the record of actions', () => {
     const before = await recordHead(server.context.pool);
     await expect(
       inTransaction(server.context.sequelize, async (tx) => {
-        await appendRecord(tx, { actor: nobody('x'), action: 'session.signed-out', entity: 'session', entityId: null, detail: { address: null } });
+        await appendRecord(tx, {
+          actor: nobody('x'),
+          action: 'session.signed-out',
+          entity: 'session',
+          entityId: null,
+          detail: { address: null },
+        });
         throw new Error('changed my mind');
       }),
     ).rejects.toThrow('changed my mind');
@@ -64,7 +76,13 @@ describe('the record of actions', () => {
   });
 
   it('takes only acts that are declared, with the fields that are declared', async () => {
-    const wrong = { actor: nobody('x'), action: 'session.signed-out', entity: 'session', entityId: null, detail: { address: null, applicant: 'row 7' } };
+    const wrong = {
+      actor: nobody('x'),
+      action: 'session.signed-out',
+      entity: 'session',
+      entityId: null,
+      detail: { address: null, applicant: 'row 7' },
+    };
     await expect(inTransaction(server.context.sequelize, (tx) => appendRecord(tx, wrong as never))).rejects.toThrow('applicant');
   });
 
@@ -105,7 +123,8 @@ describe('who reads what', () => {
     const { rows } = await owner.query('SELECT count(*)::int AS count FROM record');
     expect(seen).toHaveLength(rows[0].count);
     expect(new Set(seen).size).toBe(seen.length);
-    const filtered = (await auditor.get(`/api/record?action=session.signed-in&actorId=${marian.personId}`).expect(200)).body.entries;
+    const filtered = (await auditor.get(`/api/record?action=session.signed-in&actorId=${marian.personId}`).expect(200)).body
+      .entries;
     expect(filtered.map((entry: { actorName: string }) => entry.actorName)).toEqual(['marian']);
     await auditor.get('/api/record?limit=7&colour=blue').expect(422);
   });
@@ -121,7 +140,10 @@ describe('verification', () => {
   });
 
   /** Lets the owner tamper, looks, and puts everything back. */
-  async function tampered(statements: string[], heads: { sequence: number; hash: string }[] = []): Promise<{ kind: string; sequence: number }[]> {
+  async function tampered(
+    statements: string[],
+    heads: { sequence: number; hash: string }[] = [],
+  ): Promise<{ kind: string; sequence: number }[]> {
     await owner.query('CREATE TABLE kept AS SELECT * FROM record');
     try {
       for (const statement of statements) await owner.query(statement);
@@ -147,9 +169,17 @@ describe('verification', () => {
   it('finds a row that was dropped, and rows that changed places', async () => {
     expect(await tampered(['DELETE FROM record WHERE sequence = 6'])).toEqual([{ kind: 'dropped', sequence: 6 }]);
     // Dropped and the rest moved up to close the gap.
-    const closed = await tampered(['DELETE FROM record WHERE sequence = 6', 'UPDATE record SET sequence = sequence + 1000000 WHERE sequence > 6', 'UPDATE record SET sequence = sequence - 1000001 WHERE sequence > 1000000']);
+    const closed = await tampered([
+      'DELETE FROM record WHERE sequence = 6',
+      'UPDATE record SET sequence = sequence + 1000000 WHERE sequence > 6',
+      'UPDATE record SET sequence = sequence - 1000001 WHERE sequence > 1000000',
+    ]);
     expect(closed).toContainEqual({ kind: 'reordered', sequence: 6 });
-    const swapped = await tampered(['UPDATE record SET sequence = 999999 WHERE sequence = 4', 'UPDATE record SET sequence = 4 WHERE sequence = 5', 'UPDATE record SET sequence = 5 WHERE sequence = 999999']);
+    const swapped = await tampered([
+      'UPDATE record SET sequence = 999999 WHERE sequence = 4',
+      'UPDATE record SET sequence = 4 WHERE sequence = 5',
+      'UPDATE record SET sequence = 5 WHERE sequence = 999999',
+    ]);
     expect(swapped).toContainEqual({ kind: 'reordered', sequence: 4 });
   });
 

@@ -41,7 +41,9 @@ function mounted(): string[] {
     readonly route?: { readonly path: string; readonly methods: Readonly<Record<string, boolean>> };
   }
   const stack = (server.app.router as unknown as { stack: Layer[] }).stack;
-  return stack.flatMap(({ route }) => (route ? Object.keys(route.methods).map((method) => `${method.toUpperCase()} ${route.path}`) : []));
+  return stack.flatMap(({ route }) =>
+    route ? Object.keys(route.methods).map((method) => `${method.toUpperCase()} ${route.path}`) : [],
+  );
 }
 
 describe('the table', () => {
@@ -78,7 +80,11 @@ function ask(visitor: Visitor, row: AccessRow, subject: Subject): supertest.Test
       done(null, null);
     });
   }
-  return method === 'post' || method === 'put' ? request.send(row.headers ? undefined : {}) : method === 'patch' && !row.headers ? request.send({}) : request;
+  return method === 'post' || method === 'put'
+    ? request.send(row.headers ? undefined : {})
+    : method === 'patch' && !row.headers
+      ? request.send({})
+      : request;
 }
 
 function hold(status: number, verdict: Verdict, what: string): void {
@@ -105,39 +111,48 @@ async function statusOf(request: supertest.Test): Promise<number> {
   }
 }
 
-describe.each(accessTable.filter(({ route }) => !aboutCredentials.has(route)).map((row) => [row.route, row] as const))('%s', (_route, row) => {
-  it('refuses who is signed out or disabled, and treats each role as the table says', async () => {
-    const subject: Subject = row.own ? 'own' : row.another ? 'another' : 'nonexistent';
-    const nobody = new Visitor(supertest.agent(server.app), '');
-    await nobody.meet();
-    const anonymous = row.anonymous ?? 401;
-    hold(await statusOf(ask(nobody, row, subject)), anonymous, `anonymous ${row.route}`);
-    // The token of a disabled person's session no longer fits; routes for anyone refuse it as that of a stranger from elsewhere.
-    const gone = await statusOf(ask(disabled, row, subject));
-    if (anonymous === 401) expect(gone, `disabled ${row.route}`).toBe(401);
-    if (endsSession.has(row.route)) return;
+describe.each(accessTable.filter(({ route }) => !aboutCredentials.has(route)).map((row) => [row.route, row] as const))(
+  '%s',
+  (_route, row) => {
+    it('refuses who is signed out or disabled, and treats each role as the table says', async () => {
+      const subject: Subject = row.own ? 'own' : row.another ? 'another' : 'nonexistent';
+      const nobody = new Visitor(supertest.agent(server.app), '');
+      await nobody.meet();
+      const anonymous = row.anonymous ?? 401;
+      hold(await statusOf(ask(nobody, row, subject)), anonymous, `anonymous ${row.route}`);
+      // The token of a disabled person's session no longer fits; routes for anyone refuse it as that of a stranger from elsewhere.
+      const gone = await statusOf(ask(disabled, row, subject));
+      if (anonymous === 401) expect(gone, `disabled ${row.route}`).toBe(401);
+      if (endsSession.has(row.route)) return;
 
-    for (const which of ['another', 'nonexistent', 'own'] as const) {
-      const verdicts: ByRole | undefined = row[which];
-      if (!verdicts) continue;
-      // Refusals first: who is let in may change what the next would find.
-      const order = [...roles].sort((a, b) => Number(verdicts[a] === 'yes') - Number(verdicts[b] === 'yes'));
-      for (const role of order) hold(await statusOf(ask(visitors.get(role)!, row, which)), verdicts[role], `${role} ${row.route} (${which})`);
-    }
-  });
-});
+      for (const which of ['another', 'nonexistent', 'own'] as const) {
+        const verdicts: ByRole | undefined = row[which];
+        if (!verdicts) continue;
+        // Refusals first: who is let in may change what the next would find.
+        const order = [...roles].sort((a, b) => Number(verdicts[a] === 'yes') - Number(verdicts[b] === 'yes'));
+        for (const role of order)
+          hold(await statusOf(ask(visitors.get(role)!, row, which)), verdicts[role], `${role} ${row.route} (${which})`);
+      }
+    });
+  },
+);
 
 describe('every change', () => {
   const changes = accessTable.filter(({ route }) => !/^(GET|HEAD) /.test(route));
-  it.each(changes.map((row) => [row.route, row] as const))('%s is refused without the token and with a foreign one', async (_route, row) => {
-    const visitor = visitors.get('admin')!;
-    const method = row.route.split(' ')[0].toLowerCase() as 'post' | 'put' | 'patch' | 'delete';
-    const path = pathOf(row, 'nonexistent');
-    expect((await visitor.agent[method](path).send(row.headers ? undefined : {})).body.code).toBe('cross-site');
-    const foreign = await visitor.agent[method](path).set('X-XSRF-TOKEN', visitors.get('auditor')!.currentToken).send(row.headers ? undefined : {});
-    expect(foreign.status).toBe(403);
-    expect(foreign.body.code).toBe('cross-site');
-  });
+  it.each(changes.map((row) => [row.route, row] as const))(
+    '%s is refused without the token and with a foreign one',
+    async (_route, row) => {
+      const visitor = visitors.get('admin')!;
+      const method = row.route.split(' ')[0].toLowerCase() as 'post' | 'put' | 'patch' | 'delete';
+      const path = pathOf(row, 'nonexistent');
+      expect((await visitor.agent[method](path).send(row.headers ? undefined : {})).body.code).toBe('cross-site');
+      const foreign = await visitor.agent[method](path)
+        .set('X-XSRF-TOKEN', visitors.get('auditor')!.currentToken)
+        .send(row.headers ? undefined : {});
+      expect(foreign.status).toBe(403);
+      expect(foreign.body.code).toBe('cross-site');
+    },
+  );
 });
 
 describe('what is not there', () => {
@@ -153,9 +168,20 @@ describe('what is not there', () => {
 
   it('and what is malformed are problems too', async () => {
     const admin = visitors.get('admin')!;
-    expect((await admin.post('/api/invitations').set('Content-Type', 'application/json').send('{"name":').expect(400)).body.code).toBe('malformed');
-    expect((await admin.post('/api/invitations').set('Content-Type', 'text/plain').send('name').expect(415)).body.code).toBe('unsupported-media-type');
-    expect((await admin.post('/api/invitations').send({ name: 'x'.repeat(300_000) }).expect(413)).body.code).toBe('too-large');
+    expect(
+      (await admin.post('/api/invitations').set('Content-Type', 'application/json').send('{"name":').expect(400)).body.code,
+    ).toBe('malformed');
+    expect((await admin.post('/api/invitations').set('Content-Type', 'text/plain').send('name').expect(415)).body.code).toBe(
+      'unsupported-media-type',
+    );
+    expect(
+      (
+        await admin
+          .post('/api/invitations')
+          .send({ name: 'x'.repeat(300_000) })
+          .expect(413)
+      ).body.code,
+    ).toBe('too-large');
     expect((await admin.get('/api/people/%E0%A4%A').expect(400)).body.code).toBe('malformed');
   });
 });
@@ -163,7 +189,9 @@ describe('what is not there', () => {
 describe('the description of the API', () => {
   it('has every route, and every reference in it leads somewhere', async () => {
     const { body } = await visitors.get('auditor')!.get('/api/openapi.json').expect(200);
-    const operations = Object.entries(body.paths as Record<string, object>).flatMap(([path, methods]) => Object.keys(methods).map((method) => `${method.toUpperCase()} ${path.replace(/\{(\w+)\}/g, ':$1')}`));
+    const operations = Object.entries(body.paths as Record<string, object>).flatMap(([path, methods]) =>
+      Object.keys(methods).map((method) => `${method.toUpperCase()} ${path.replace(/\{(\w+)\}/g, ':$1')}`),
+    );
     expect(operations.sort()).toEqual(allRoutes().map(name).sort());
     const references = [...JSON.stringify(body).matchAll(/"\$ref":"#\/components\/schemas\/(\w+)"/g)].map(([, schema]) => schema);
     expect(references.length).toBeGreaterThan(20);

@@ -2,7 +2,7 @@ import { type ChildProcess, fork } from 'node:child_process';
 import { fileURLToPath } from 'node:url';
 import type { Run } from '@tallystone/contracts/runs/schema';
 import { Pool } from 'pg';
-import supertest from 'supertest';
+import type supertest from 'supertest';
 import { afterAll, afterEach, beforeAll, describe, expect, it } from 'vitest';
 import { inTransaction } from '../../server/src/database/transaction';
 import { startRun } from '../../server/src/jobs/start-run';
@@ -52,7 +52,10 @@ async function workerProcess(): Promise<ChildProcess> {
 const workHere = async (): Promise<void> => void (here = await startWorker(server.context, [counting]));
 
 const begin = (payload: { steps: number; pause: number; fail?: boolean }, singleton?: string): Promise<string> =>
-  inTransaction(server.context.sequelize, async (tx) => (await startRun(server.context, tx, countingJob, { payload, person: { id: marian.personId }, singleton })).id);
+  inTransaction(
+    server.context.sequelize,
+    async (tx) => (await startRun(server.context, tx, countingJob, { payload, person: { id: marian.personId }, singleton })).id,
+  );
 
 const read = async (id: string): Promise<Run> => (await marian.get(`/api/runs/${id}`).expect(200)).body as Run;
 
@@ -67,12 +70,17 @@ async function until(id: string, reached: (run: Run) => boolean, patience = 40_0
 }
 
 async function counted(id: string): Promise<string[]> {
-  const { rows } = await owner.query<{ what: string }>(`SELECT attempt || ' ' || what AS what FROM counted WHERE run_id = $1 ORDER BY attempt, what`, [id]);
+  const { rows } = await owner.query<{ what: string }>(
+    `SELECT attempt || ' ' || what AS what FROM counted WHERE run_id = $1 ORDER BY attempt, what`,
+    [id],
+  );
   return rows.map((row) => row.what);
 }
 
 const attempts = async (id: string): Promise<(string | null)[]> =>
-  (await owner.query<{ outcome: string | null }>('SELECT outcome FROM run_attempts WHERE run_id = $1 ORDER BY number', [id])).rows.map(({ outcome }) => outcome);
+  (
+    await owner.query<{ outcome: string | null }>('SELECT outcome FROM run_attempts WHERE run_id = $1 ORDER BY number', [id])
+  ).rows.map(({ outcome }) => outcome);
 
 describe('a run', () => {
   it('is done once, with its result, and tells how far it is', async () => {
@@ -198,7 +206,11 @@ describe('events', () => {
 });
 
 /** What the event stream sends within a while. */
-async function stream(visitor: Visitor, lastEventId: string, patience = 1200): Promise<{ id: number; data: { runId: string; state: string } }[]> {
+async function stream(
+  visitor: Visitor,
+  lastEventId: string,
+  patience = 1200,
+): Promise<{ id: number; data: { runId: string; state: string } }[]> {
   const chunks: string[] = [];
   await new Promise<void>((resolve, reject) => {
     const request = visitor
@@ -213,10 +225,14 @@ async function stream(visitor: Visitor, lastEventId: string, patience = 1200): P
       });
     request.then(
       () => resolve(),
-      (error: { code?: string }) => (error.code === 'ECONNRESET' || error.code === 'ABORTED' ? resolve() : reject(error as Error)),
+      (error: { code?: string }) =>
+        error.code === 'ECONNRESET' || error.code === 'ABORTED' ? resolve() : reject(error as Error),
     );
   });
-  return [...chunks.join('').matchAll(/id: (\d+)\nevent: run\ndata: (.*)\n/g)].map(([, id, data]) => ({ id: Number(id), data: JSON.parse(data) }));
+  return [...chunks.join('').matchAll(/id: (\d+)\nevent: run\ndata: (.*)\n/g)].map(([, id, data]) => ({
+    id: Number(id),
+    data: JSON.parse(data),
+  }));
 }
 
 describe('idempotency', () => {
@@ -226,14 +242,19 @@ describe('idempotency', () => {
     expect(new Set(answers.map(({ status }) => status))).toEqual(new Set([202]));
     expect(new Set(answers.map(({ body }) => body.id)).size).toBe(1);
     expect(answers.filter(({ headers }) => headers['idempotent-replayed'] === 'true')).toHaveLength(49);
-    const { rows } = await owner.query(`SELECT count(*)::int AS runs FROM runs WHERE kind = 'record.verify' AND person_id = $1`, [otto.personId]);
+    const { rows } = await owner.query(`SELECT count(*)::int AS runs FROM runs WHERE kind = 'record.verify' AND person_id = $1`, [
+      otto.personId,
+    ]);
     expect(rows[0].runs).toBe(1);
   });
 
   it('refuses a key that was used for another body, and a malformed one', async () => {
     const admin = await server.signIn('ada', 'admin');
     const invite = (email: string, key: string): supertest.Test =>
-      admin.post('/api/invitations').set('Idempotency-Key', key).send({ name: 'New', email, roles: ['modeller'] });
+      admin
+        .post('/api/invitations')
+        .set('Idempotency-Key', key)
+        .send({ name: 'New', email, roles: ['modeller'] });
     const first = await invite('new@saltmarsh.example', 'the-first-key').expect(201);
     const again = await invite('new@saltmarsh.example', 'the-first-key').expect(201);
     expect(again.body).toEqual(first.body);
@@ -241,6 +262,10 @@ describe('idempotency', () => {
     await invite('else@saltmarsh.example', 'short').expect(400);
     // The same key of another person is another key.
     const other = await server.signIn('adele', 'admin');
-    await other.post('/api/invitations').set('Idempotency-Key', 'the-first-key').send({ name: 'Else', email: 'else@saltmarsh.example', roles: [] }).expect(201);
+    await other
+      .post('/api/invitations')
+      .set('Idempotency-Key', 'the-first-key')
+      .send({ name: 'Else', email: 'else@saltmarsh.example', roles: [] })
+      .expect(201);
   });
 });

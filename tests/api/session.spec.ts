@@ -18,7 +18,11 @@ afterAll(async () => {
 });
 
 /** A browser in front of the sign-in page: cookies, and the token that goes with them. */
-async function stranger(): Promise<{ agent: ReturnType<typeof supertest.agent>; token: () => string; signIn: (email: string, password: string) => supertest.Test }> {
+async function stranger(): Promise<{
+  agent: ReturnType<typeof supertest.agent>;
+  token: () => string;
+  signIn: (email: string, password: string) => supertest.Test;
+}> {
   const agent = supertest.agent(server.app);
   let token = tokenOf(await agent.get('/api/session').expect(200));
   return {
@@ -56,7 +60,8 @@ describe('sign-in', () => {
     const visitor = await stranger();
     const first = await visitor.signIn('marian@saltmarsh.example', testPassword).expect(200);
     const second = await visitor.signIn('marian@saltmarsh.example', testPassword).expect(200);
-    const id = (response: supertest.Response): string => (response.headers['set-cookie'] as unknown as string[]).find((cookie) => cookie.startsWith('tallystone='))!;
+    const id = (response: supertest.Response): string =>
+      (response.headers['set-cookie'] as unknown as string[]).find((cookie) => cookie.startsWith('tallystone='))!;
     expect(id(first)).not.toBe(id(second));
     expect(id(first)).toMatch(/HttpOnly; SameSite=Lax$/);
     const old = id(first).split(';')[0];
@@ -97,7 +102,9 @@ describe('sign-in', () => {
 
   it('does not stall other requests while passwords are hashed', async () => {
     const visitor = await stranger();
-    const hashing = Promise.all([1, 2].map(() => visitor.signIn('ghost@saltmarsh.example', 'not the password at all').then(() => undefined)));
+    const hashing = Promise.all(
+      [1, 2].map(() => visitor.signIn('ghost@saltmarsh.example', 'not the password at all').then(() => undefined)),
+    );
     let worst = 0;
     for (let k = 0; k < 10; k++) {
       const begun = performance.now();
@@ -114,7 +121,11 @@ describe('sign-in', () => {
     await server.signIn('tested', 'auditor');
     await server.context.pool.query('DELETE FROM sign_in_failures');
     const visitor = await stranger();
-    const answers = await Promise.all(Array.from({ length: 14 }, () => visitor.signIn('tested@saltmarsh.example', 'not the password at all').then(({ status }) => status)));
+    const answers = await Promise.all(
+      Array.from({ length: 14 }, () =>
+        visitor.signIn('tested@saltmarsh.example', 'not the password at all').then(({ status }) => status),
+      ),
+    );
     expect(answers.filter((status) => status === 401)).toHaveLength(10);
     expect(answers.filter((status) => status === 429)).toHaveLength(4);
     const refused = await visitor.signIn('tested@saltmarsh.example', testPassword).expect(429);
@@ -122,7 +133,9 @@ describe('sign-in', () => {
     expect(Number(refused.headers['retry-after'])).toBeLessThanOrEqual(900);
     // Another account from the same address still gets in.
     await visitor.signIn('marian@saltmarsh.example', testPassword).expect(200);
-    const throttled = (await record('session.sign-in-failed')).filter((row) => (row['detail'] as { cause: string }).cause === 'throttled');
+    const throttled = (await record('session.sign-in-failed')).filter(
+      (row) => (row['detail'] as { cause: string }).cause === 'throttled',
+    );
     expect(throttled).toHaveLength(1);
     // Fifteen minutes later, by the database's clock.
     await owner.query(`UPDATE sign_in_failures SET at = at - interval '16 minutes'`);
@@ -138,7 +151,9 @@ describe('requests from elsewhere', () => {
     const refused = await marian.agent.delete('/api/session').set('X-XSRF-TOKEN', foreign).expect(403);
     expect(refused.body.code).toBe('cross-site');
     // Planted together with a cookie of the attacker's choice it is still not this session's.
-    const planted = supertest(server.app).delete('/api/session').set('Cookie', `${await cookieOf(marian)}; XSRF-TOKEN=${foreign}`);
+    const planted = supertest(server.app)
+      .delete('/api/session')
+      .set('Cookie', `${await cookieOf(marian)}; XSRF-TOKEN=${foreign}`);
     await planted.set('X-XSRF-TOKEN', foreign).expect(403);
     expect((await marian.get('/api/session')).body.user.name).toBe('marian');
   });
@@ -152,14 +167,20 @@ describe('requests from elsewhere', () => {
   });
 
   it('refuses a sign-in without a token', async () => {
-    await supertest(server.app).post('/api/session').send({ email: 'marian@saltmarsh.example', password: testPassword }).expect(403);
+    await supertest(server.app)
+      .post('/api/session')
+      .send({ email: 'marian@saltmarsh.example', password: testPassword })
+      .expect(403);
   });
 });
 
 async function cookieOf(visitor: Visitor): Promise<string> {
   const request = visitor.get('/api/session');
   await request;
-  return String((request as unknown as { getHeader(name: string): string }).getHeader?.('cookie') ?? (request as unknown as { cookies: string }).cookies)
+  return String(
+    (request as unknown as { getHeader(name: string): string }).getHeader?.('cookie') ??
+      (request as unknown as { cookies: string }).cookies,
+  )
     .split('; ')
     .find((cookie) => cookie.startsWith('tallystone='))!;
 }
@@ -201,10 +222,13 @@ describe('sessions', () => {
 describe('a change of password', () => {
   it('wants the present one, length, and nothing that is guessed first, and says why', async () => {
     const visitor = await server.signIn('changer', 'modeller');
-    const change = (current: string, next: string): supertest.Test => visitor.put('/api/session/password').send({ current, next });
+    const change = (current: string, next: string): supertest.Test =>
+      visitor.put('/api/session/password').send({ current, next });
     const wrong = await change('not the present password', 'quite another long one').expect(422);
     expect(wrong.body.problems[0]).toMatchObject({ code: 'password-wrong', where: { field: 'current' } });
-    expect((await change(testPassword, 'fourteen chars').expect(422)).body.problems[0].message).toBe('Use at least 15 characters');
+    expect((await change(testPassword, 'fourteen chars').expect(422)).body.problems[0].message).toBe(
+      'Use at least 15 characters',
+    );
     for (const [bad, why] of [
       ['Password1234567!', 'guessed first'],
       ['changer2024changer!', 'guessed first'],
@@ -222,7 +246,10 @@ describe('a change of password', () => {
     const here = await server.signIn('mover', 'modeller');
     const there = new Visitor(supertest.agent(server.app), here.personId);
     await there.enter('mover@saltmarsh.example');
-    const answer = await here.put('/api/session/password').send({ current: testPassword, next: 'a heron on one leg, waiting' }).expect(200);
+    const answer = await here
+      .put('/api/session/password')
+      .send({ current: testPassword, next: 'a heron on one leg, waiting' })
+      .expect(200);
     expect(answer.body.user.name).toBe('mover');
     await there.get('/api/sessions').expect(401);
     expect((await here.get('/api/sessions').expect(200)).body.sessions).toHaveLength(1);

@@ -19,7 +19,9 @@ export const countingTables = `
 export const counting = handle(countingJob, {
   async work({ steps, pause, fail }, { context, run, attempt, signal, progress, write, finish }) {
     const note = (what: string) =>
-      write((tx) => rows(context.sequelize, 'INSERT INTO counted VALUES ($1, $2, $3) RETURNING attempt', [run.id, attempt, what], tx));
+      write((tx) =>
+        rows(context.sequelize, 'INSERT INTO counted VALUES ($1, $2, $3) RETURNING attempt', [run.id, attempt, what], tx),
+      );
     await note('begun');
     for (let step = 0; step < steps; step++) {
       signal.throwIfAborted();
@@ -34,6 +36,11 @@ export const counting = handle(countingJob, {
   },
   async abandon(tx, run) {
     await rows(RecordRow.sequelize!, `DELETE FROM counted WHERE run_id = $1 RETURNING attempt`, [run.id], tx);
-    await rows(RecordRow.sequelize!, `INSERT INTO counted VALUES ($1, 0, $2) RETURNING attempt`, [run.id, `abandoned ${run.outcome}`], tx);
+    await rows(
+      RecordRow.sequelize!,
+      `INSERT INTO counted VALUES ($1, 0, $2) RETURNING attempt`,
+      [run.id, `abandoned ${run.outcome}`],
+      tx,
+    );
   },
 });

@@ -1,7 +1,21 @@
 import { defineEndpoint } from '../endpoint';
-import { Accepted, AcceptInvitation, Invitation, InvitationList, InvitationParams, InvitationPreview, Invite, LookUpInvitation } from './schema';
+import {
+  Accepted,
+  AcceptInvitation,
+  Invitation,
+  InvitationList,
+  InvitationParams,
+  InvitationPreview,
+  Invite,
+  LookUpInvitation,
+} from './schema';
 
-export const listInvitations = defineEndpoint({ method: 'GET', path: '/api/invitations', summary: 'Invitations, latest first', response: InvitationList });
+export const listInvitations = defineEndpoint({
+  method: 'GET',
+  path: '/api/invitations',
+  summary: 'Invitations, latest first',
+  response: InvitationList,
+});
 
 export const invite = defineEndpoint({
   method: 'POST',

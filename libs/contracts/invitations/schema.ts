@@ -23,6 +23,8 @@ export const InvitationParams = z.strictObject({ invitationId: z.uuid() });
 /** Tokens travel in bodies, never in paths: paths are logged. */
 const Token = z.string().min(20).max(200);
 export const LookUpInvitation = z.strictObject({ token: Token });
-export const InvitationPreview = z.object({ name: z.string(), email: z.string(), expiresAt: z.string() }).meta({ id: 'InvitationPreview' });
+export const InvitationPreview = z
+  .object({ name: z.string(), email: z.string(), expiresAt: z.string() })
+  .meta({ id: 'InvitationPreview' });
 export const AcceptInvitation = z.strictObject({ token: Token, name: PersonName, password: NewPassword });
 export const Accepted = z.object({ email: z.string() }).meta({ id: 'Accepted' });

@@ -1,7 +1,12 @@
 import { defineEndpoint } from '../endpoint';
 import { ChangeRoles, ChangeState, Person, PersonList, PersonParams } from './schema';
 
-export const listPeople = defineEndpoint({ method: 'GET', path: '/api/people', summary: 'Everyone with an account', response: PersonList });
+export const listPeople = defineEndpoint({
+  method: 'GET',
+  path: '/api/people',
+  summary: 'Everyone with an account',
+  response: PersonList,
+});
 
 export const readPerson = defineEndpoint({
   method: 'GET',

@@ -8,7 +8,10 @@ const Subject = z.strictObject({ name: z.string(), email: z.string() });
 const Invited = z.strictObject({ name: z.string(), email: z.string(), roles: z.array(Role) });
 
 export const peopleEvents = [
-  recordEvent('person.created', 'person', { after: Invited, detail: z.strictObject({ by: z.enum(['set-up', 'invitation', 'demo']) }) }),
+  recordEvent('person.created', 'person', {
+    after: Invited,
+    detail: z.strictObject({ by: z.enum(['set-up', 'invitation', 'demo']) }),
+  }),
   recordEvent('person.roles-changed', 'person', { before: Roles, after: Roles, detail: Subject, reason: Reason }),
   recordEvent('person.disabled', 'person', { before: State, after: State, detail: Subject, reason: Reason }),
   recordEvent('person.enabled', 'person', { before: State, after: State, detail: Subject, reason: Reason }),

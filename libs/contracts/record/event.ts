@@ -8,7 +8,11 @@ import { z } from 'zod';
  * @example
  * recordEvent('person.disabled', 'person', { before: z.strictObject({ state: PersonState }), after: z.strictObject({ state: PersonState }), reason: Reason })
  */
-export function recordEvent<const A extends string, const E extends string, S extends EventShape>(action: A, entity: E, shape: S) {
+export function recordEvent<const A extends string, const E extends string, S extends EventShape>(
+  action: A,
+  entity: E,
+  shape: S,
+) {
   return z.strictObject({
     action: z.literal(action),
     entity: z.literal(entity),

@@ -50,7 +50,9 @@ export const RecordVerification = z
     rows: z.int(),
     intact: z.boolean(),
     faultCount: z.int(),
-    faults: z.array(z.object({ sequence: z.int(), kind: z.enum(['altered', 'dropped', 'reordered', 'cut']), message: z.string() })),
+    faults: z.array(
+      z.object({ sequence: z.int(), kind: z.enum(['altered', 'dropped', 'reordered', 'cut']), message: z.string() }),
+    ),
     head: RecordHead,
   })
   .meta({ id: 'RecordVerification' });

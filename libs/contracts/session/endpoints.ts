@@ -8,7 +8,13 @@ export const readSession = defineEndpoint({
   response: Session,
 });
 
-export const signIn = defineEndpoint({ method: 'POST', path: '/api/session', summary: 'Sign in', body: SignIn, response: Session });
+export const signIn = defineEndpoint({
+  method: 'POST',
+  path: '/api/session',
+  summary: 'Sign in',
+  body: SignIn,
+  response: Session,
+});
 export const signOut = defineEndpoint({ method: 'DELETE', path: '/api/session', summary: 'Sign out', response: Session });
 
 export const changePassword = defineEndpoint({
@@ -19,7 +25,12 @@ export const changePassword = defineEndpoint({
   response: Session,
 });
 
-export const listOwnSessions = defineEndpoint({ method: 'GET', path: '/api/sessions', summary: 'Own sessions', response: OwnSessions });
+export const listOwnSessions = defineEndpoint({
+  method: 'GET',
+  path: '/api/sessions',
+  summary: 'Own sessions',
+  response: OwnSessions,
+});
 
 export const endOwnSession = defineEndpoint({
   method: 'DELETE',

@@ -2,7 +2,12 @@ import { defineEndpoint } from '../endpoint';
 import { Accepted } from '../invitations/schema';
 import { SetUp, SetUpState } from './schema';
 
-export const readSetUp = defineEndpoint({ method: 'GET', path: '/api/set-up', summary: 'Whether the first admin is still to be made', response: SetUpState });
+export const readSetUp = defineEndpoint({
+  method: 'GET',
+  path: '/api/set-up',
+  summary: 'Whether the first admin is still to be made',
+  response: SetUpState,
+});
 
 export const setUp = defineEndpoint({
   method: 'POST',

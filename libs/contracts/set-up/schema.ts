@@ -4,4 +4,9 @@ import { NewPassword } from '../session/schema';
 
 /** Open until the first admin exists; never open in the demo. */
 export const SetUpState = z.object({ open: z.boolean() }).meta({ id: 'SetUpState' });
-export const SetUp = z.strictObject({ token: z.string().min(20).max(200), name: PersonName, email: EmailAddress, password: NewPassword });
+export const SetUp = z.strictObject({
+  token: z.string().min(20).max(200),
+  name: PersonName,
+  email: EmailAddress,
+  password: NewPassword,
+});

@@ -22,7 +22,9 @@ try {
   const found = await verifyChain(pool, { heads });
   for (const fault of found.faults) console.error(`${fault.kind}: ${fault.message}`);
   if (found.faultCount > found.faults.length) console.error(`… and ${found.faultCount - found.faults.length} more`);
-  console.log(`${found.rows} entries, ${found.intact ? 'the chain is intact' : `${found.faultCount} faults`}; head ${found.head.sequence}:${found.head.hash}`);
+  console.log(
+    `${found.rows} entries, ${found.intact ? 'the chain is intact' : `${found.faultCount} faults`}; head ${found.head.sequence}:${found.head.hash}`,
+  );
   process.exitCode = found.intact ? 0 : 2;
 } catch (error) {
   console.error(error instanceof Error ? error.message : error);

@@ -30,8 +30,17 @@ const messageOf = (environment: Record<string, string>): string => {
 
 describe('the configuration', () => {
   it('has defaults for what is not given, and an empty value counts as not given', () => {
-    expect(readConfig({ ...good, PORT: '', TALLYSTONE_DEMO: '' })).toMatchObject({ port: 4820, host: '127.0.0.1', demo: false, origin: null, metricsPort: 0 });
-    expect(readConfig({ ...good, ORIGIN: 'https://tally.saltmarsh.example/', TALLYSTONE_DEMO: '1' })).toMatchObject({ demo: true, origin: 'https://tally.saltmarsh.example' });
+    expect(readConfig({ ...good, PORT: '', TALLYSTONE_DEMO: '' })).toMatchObject({
+      port: 4820,
+      host: '127.0.0.1',
+      demo: false,
+      origin: null,
+      metricsPort: 0,
+    });
+    expect(readConfig({ ...good, ORIGIN: 'https://tally.saltmarsh.example/', TALLYSTONE_DEMO: '1' })).toMatchObject({
+      demo: true,
+      origin: 'https://tally.saltmarsh.example',
+    });
   });
 
   it('names every bad value at once', () => {
@@ -41,7 +50,9 @@ describe('the configuration', () => {
   });
 
   it('has no default keys: a file that is missing, or a key that is short or missing, is refused by name', () => {
-    expect(messageOf({ ...good, TALLYSTONE_KEYS: join(folder, 'none.json') })).toMatch(/TALLYSTONE_KEYS: the keys file .* cannot be read/);
+    expect(messageOf({ ...good, TALLYSTONE_KEYS: join(folder, 'none.json') })).toMatch(
+      /TALLYSTONE_KEYS: the keys file .* cannot be read/,
+    );
     const message = messageOf({ ...good, TALLYSTONE_KEYS: keysFile('short.json', { session: key(16), identifiers: key(32) }) });
     expect(message).toContain('session needs at least 32 bytes');
     expect(message).toContain('rawFiles');

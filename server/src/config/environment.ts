@@ -82,7 +82,11 @@ export function readConfig(environment: Readonly<Record<string, string | undefin
   const given = Object.fromEntries(Object.entries(environment).filter(([, value]) => value !== undefined && value !== ''));
   const parsed = Environment.safeParse(given);
   if (!parsed.success) {
-    throw new ConfigProblem(parsed.error.issues.map((issue) => `${issue.path.join('.')}: ${given[String(issue.path[0])] === undefined ? 'is missing' : issue.message}`).join('\n'));
+    throw new ConfigProblem(
+      parsed.error.issues
+        .map((issue) => `${issue.path.join('.')}: ${given[String(issue.path[0])] === undefined ? 'is missing' : issue.message}`)
+        .join('\n'),
+    );
   }
   const value = parsed.data;
   const dataFolder = resolve(value.TALLYSTONE_DATA);

@@ -25,7 +25,10 @@ export function readKeys(path: string): Keys {
     throw new Error(`the keys file ${path} cannot be read: ${cause instanceof Error ? cause.message : String(cause)}`);
   }
   const keys = KeysFile.safeParse(content);
-  if (!keys.success) throw new Error(`the keys file ${path}: ${keys.error.issues.map((issue) => `${issue.path.join('.')} ${issue.message}`).join('; ')}`);
+  if (!keys.success)
+    throw new Error(
+      `the keys file ${path}: ${keys.error.issues.map((issue) => `${issue.path.join('.')} ${issue.message}`).join('; ')}`,
+    );
   return keys.data;
 }
 

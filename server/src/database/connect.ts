@@ -21,7 +21,13 @@ export function connect(config: Config, log: Log): Database {
     define: { underscored: true, timestamps: false, freezeTableName: true },
   });
   defineModels(sequelize);
-  const pool = new Pool({ connectionString: config.databaseUrl, max: 6, application_name: 'tallystone-pool', connectionTimeoutMillis: 10_000, keepAlive: true });
+  const pool = new Pool({
+    connectionString: config.databaseUrl,
+    max: 6,
+    application_name: 'tallystone-pool',
+    connectionTimeoutMillis: 10_000,
+    keepAlive: true,
+  });
   // An idle connection that the server closes raises this; unheard it would end the process.
   pool.on('error', (error) => log.warn({ err: error }, 'a database connection was lost'));
   return {

@@ -1,7 +1,12 @@
 import { Client } from 'pg';
 import type { Log } from '../logging/log';
 
-export const channels = { events: 'tallystone_events', queue: 'tallystone_queue', sessions: 'tallystone_sessions', cancel: 'tallystone_cancel' } as const;
+export const channels = {
+  events: 'tallystone_events',
+  queue: 'tallystone_queue',
+  sessions: 'tallystone_sessions',
+  cancel: 'tallystone_cancel',
+} as const;
 export type Channel = (typeof channels)[keyof typeof channels];
 
 type Hear = (payload: string) => void;
@@ -22,7 +27,12 @@ export class Listener {
   ) {}
 
   async open(): Promise<void> {
-    const client = new Client({ connectionString: this.url, application_name: 'tallystone-listen', keepAlive: true, connectionTimeoutMillis: 5000 });
+    const client = new Client({
+      connectionString: this.url,
+      application_name: 'tallystone-listen',
+      keepAlive: true,
+      connectionTimeoutMillis: 5000,
+    });
     client.on('notification', ({ channel, payload }) => {
       for (const hear of this.hearers.get(channel as Channel) ?? []) hear(payload ?? '');
     });

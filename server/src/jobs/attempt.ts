@@ -79,7 +79,13 @@ export async function attemptRun(
   }
 }
 
-async function settle(context: Context, run: Held, handler: Handler | undefined, cause: unknown, log: Context['log']): Promise<void> {
+async function settle(
+  context: Context,
+  run: Held,
+  handler: Handler | undefined,
+  cause: unknown,
+  log: Context['log'],
+): Promise<void> {
   if (cause instanceof Superseded) {
     log.warn('run was given to another attempt');
     return;
@@ -92,7 +98,8 @@ async function settle(context: Context, run: Held, handler: Handler | undefined,
         throw refused;
       },
     );
-    if (cancelled || cause instanceof Cancelled) await endRun(context, tx, run, handler, { state: 'cancelled', outcome: 'cancelled' });
+    if (cancelled || cause instanceof Cancelled)
+      await endRun(context, tx, run, handler, { state: 'cancelled', outcome: 'cancelled' });
     else if (cause instanceof Stopping || problemFrom(cause)?.status === 503) await requeue(context, tx, run, 'released');
     else await endRun(context, tx, run, handler, { state: 'failed', outcome: 'failed', problem: problemOf(cause) });
   }).catch((refused: unknown) => {
@@ -103,8 +110,17 @@ async function settle(context: Context, run: Held, handler: Handler | undefined,
 
 /** What a person is told about a run that failed. */
 function problemOf(cause: unknown): ProblemItem {
-  if (cause instanceof TaskMemoryError) return { code: 'memory', message: `${cause.message} Fewer rows, characteristics or penalties need less.`, where: { memoryMb: cause.memoryMb } };
+  if (cause instanceof TaskMemoryError)
+    return {
+      code: 'memory',
+      message: `${cause.message} Fewer rows, characteristics or penalties need less.`,
+      where: { memoryMb: cause.memoryMb },
+    };
   const problem = problemFrom(cause);
   if (problem) return { code: problem.code, message: problem.detail, where: {} };
-  return { code: problemCodes.internal, message: 'The work failed on our side. The log says why under the id of this run.', where: {} };
+  return {
+    code: problemCodes.internal,
+    message: 'The work failed on our side. The log says why under the id of this run.',
+    where: {},
+  };
 }

@@ -57,5 +57,5 @@ export function handle<Payload extends z.ZodType, Result extends z.ZodType>(
     readonly abandon?: Handler['abandon'];
   },
 ): Handler {
-  return { definition, work: (payload, run) => code.work(definition.payload.parse(payload), run as RunContext<z.input<Result>>), abandon: code.abandon ?? null };
+  return { definition, work: (payload, run) => code.work(definition.payload.parse(payload), run), abandon: code.abandon ?? null };
 }

@@ -61,7 +61,12 @@ export class Heartbeat {
   }
 
   private async connect(): Promise<Client> {
-    const client = new Client({ connectionString: this.url, application_name: 'tallystone-attempt', connectionTimeoutMillis: 4000, query_timeout: 4000 });
+    const client = new Client({
+      connectionString: this.url,
+      application_name: 'tallystone-attempt',
+      connectionTimeoutMillis: 4000,
+      query_timeout: 4000,
+    });
     client.on('error', () => {
       if (this.client === client) this.client = null;
     });

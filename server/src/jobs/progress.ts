@@ -31,7 +31,9 @@ export class Progress {
     while (this.latest) {
       const { phase, share } = this.latest;
       this.latest = null;
-      await this.write(phase, share).catch((error: unknown) => this.context.log.debug({ err: error }, 'progress was not written'));
+      await this.write(phase, share).catch((error: unknown) =>
+        this.context.log.debug({ err: error }, 'progress was not written'),
+      );
       await new Promise((resolve) => setTimeout(resolve, leastPause));
     }
   }

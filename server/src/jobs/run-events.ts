@@ -7,7 +7,12 @@ import { rows } from '../database/sql';
  * as the last statement of the transaction.
  */
 export async function emitRunEvent(sequelize: Sequelize, tx: Transaction, runId: string): Promise<void> {
-  await rows(sequelize, `SELECT pg_advisory_xact_lock(hashtextextended('run-events:' || person_id, 0)) FROM runs WHERE id = $1`, [runId], tx);
+  await rows(
+    sequelize,
+    `SELECT pg_advisory_xact_lock(hashtextextended('run-events:' || person_id, 0)) FROM runs WHERE id = $1`,
+    [runId],
+    tx,
+  );
   await rows(
     sequelize,
     `WITH event AS (

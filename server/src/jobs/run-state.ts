@@ -36,7 +36,13 @@ const columns = `id, kind, queue, payload, state, attempt, most_attempts AS "mos
 export const attemptKey = `hashtextextended('run-attempt:' || $1 || ':' || $2, 0)`;
 
 /** Turns a queued run into a running one with a new attempt; null when this job is no longer the run's. */
-export async function beginAttempt({ sequelize }: Context, tx: Transaction, runId: string, jobId: string, worker: string): Promise<Held | null> {
+export async function beginAttempt(
+  { sequelize }: Context,
+  tx: Transaction,
+  runId: string,
+  jobId: string,
+  worker: string,
+): Promise<Held | null> {
   const [run] = await rows<Held>(
     sequelize,
     `UPDATE runs SET state = 'running', attempt = attempt + 1, started_at = coalesce(started_at, clock_timestamp()), phase = NULL, share = NULL
@@ -45,7 +51,12 @@ export async function beginAttempt({ sequelize }: Context, tx: Transaction, runI
     tx,
   );
   if (!run) return null;
-  await rows(sequelize, 'INSERT INTO run_attempts (run_id, number, worker) VALUES ($1, $2, $3) RETURNING number', [runId, run.attempt, worker], tx);
+  await rows(
+    sequelize,
+    'INSERT INTO run_attempts (run_id, number, worker) VALUES ($1, $2, $3) RETURNING number',
+    [runId, run.attempt, worker],
+    tx,
+  );
   await emitRunEvent(sequelize, tx, runId);
   return run;
 }
@@ -56,7 +67,12 @@ export async function beginAttempt({ sequelize }: Context, tx: Transaction, runI
  * @throws Superseded or Cancelled when the attempt no longer counts
  */
 export async function holdFence({ sequelize }: Context, tx: Transaction, run: Held): Promise<void> {
-  const [now] = await rows<{ state: string; attempt: number }>(sequelize, 'SELECT state, attempt FROM runs WHERE id = $1 FOR UPDATE', [run.id], tx);
+  const [now] = await rows<{ state: string; attempt: number }>(
+    sequelize,
+    'SELECT state, attempt FROM runs WHERE id = $1 FOR UPDATE',
+    [run.id],
+    tx,
+  );
   if (now?.attempt === run.attempt && now.state === 'cancelling') throw new Cancelled('The run was cancelled');
   if (now?.attempt !== run.attempt || now.state !== 'running') throw new Superseded('Another attempt does this work');
 }
@@ -69,7 +85,13 @@ export interface Ending {
 }
 
 /** Ends a run and its attempt. The caller holds the run's row. */
-export async function endRun(context: Context, tx: Transaction, run: Held, handler: Handler | undefined, ending: Ending): Promise<void> {
+export async function endRun(
+  context: Context,
+  tx: Transaction,
+  run: Held,
+  handler: Handler | undefined,
+  ending: Ending,
+): Promise<void> {
   const { sequelize } = context;
   if (ending.state !== 'succeeded') await handler?.abandon?.(tx, { ...run, outcome: ending.state });
   await rows(

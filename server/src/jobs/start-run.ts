@@ -47,7 +47,10 @@ export async function startRun<Payload extends z.ZodType>(
     tx,
   );
   if (!made) {
-    const underWay = await Run.findOne({ where: { kind: definition.kind, singleton: asked.singleton ?? null, endedAt: null }, transaction: tx });
+    const underWay = await Run.findOne({
+      where: { kind: definition.kind, singleton: asked.singleton ?? null, endedAt: null },
+      transaction: tx,
+    });
     if (underWay) return underWay;
     // It ended between the two statements.
     return startRun(context, tx, definition, asked);
@@ -58,11 +61,21 @@ export async function startRun<Payload extends z.ZodType>(
 }
 
 /** Puts a run into its queue (again), under a new job: an older job that comes late finds that it is no longer the run's and does nothing. */
-export async function enqueue({ sequelize, boss }: Pick<Context, 'sequelize' | 'boss'>, tx: Transaction, runId: string, queue: string): Promise<void> {
+export async function enqueue(
+  { sequelize, boss }: Pick<Context, 'sequelize' | 'boss'>,
+  tx: Transaction,
+  runId: string,
+  queue: string,
+): Promise<void> {
   const db = within(sequelize, tx);
   const [old] = await rows<{ job_id: string | null }>(sequelize, 'SELECT job_id FROM runs WHERE id = $1', [runId], tx);
   if (old?.job_id) await boss.deleteJob(queue, old.job_id, { db });
   const jobId = await boss.send(queue, { runId }, { db });
-  await rows(sequelize, `UPDATE runs SET state = 'queued', job_id = $2, queued_at = clock_timestamp(), phase = NULL, share = NULL WHERE id = $1 RETURNING id`, [runId, jobId], tx);
+  await rows(
+    sequelize,
+    `UPDATE runs SET state = 'queued', job_id = $2, queued_at = clock_timestamp(), phase = NULL, share = NULL WHERE id = $1 RETURNING id`,
+    [runId, jobId],
+    tx,
+  );
   await rows(sequelize, `SELECT pg_notify('tallystone_queue', $1)`, [queue], tx);
 }

@@ -67,7 +67,8 @@ async function sweepCancelled(context: Context, handlers: ReadonlyMap<string, Ha
   for (const { id } of idle) {
     await inTransaction(context.sequelize, async (tx) => {
       const run = await takeRun(context, tx, id);
-      if (run?.state === 'cancelling') await endRun(context, tx, run, handlers.get(run.kind), { state: 'cancelled', outcome: 'cancelled' });
+      if (run?.state === 'cancelling')
+        await endRun(context, tx, run, handlers.get(run.kind), { state: 'cancelled', outcome: 'cancelled' });
     });
   }
 }

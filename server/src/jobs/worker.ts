@@ -41,7 +41,9 @@ export async function startWorker(context: Context, list: readonly Handler[] = a
   const wake = (): void => takers.forEach((id) => boss.notifyWorker(id));
   let sweeping: Promise<void> = Promise.resolve();
   const sweepNow = (): void => {
-    sweeping = sweeping.then(() => sweep(context, handlers)).catch((error: unknown) => log.warn({ err: error }, 'a sweep failed'));
+    sweeping = sweeping
+      .then(() => sweep(context, handlers))
+      .catch((error: unknown) => log.warn({ err: error }, 'a sweep failed'));
   };
   const unsubscribe = [
     listener.on(channels.queue, wake),

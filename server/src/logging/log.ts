@@ -14,5 +14,10 @@ export const redacted = [
 
 /** JSON lines on standard output. */
 export function createLog(level: string): Log {
-  return pino({ level, base: { pid: process.pid }, redact: { paths: redacted, remove: true }, timestamp: pino.stdTimeFunctions.isoTime });
+  return pino({
+    level,
+    base: { pid: process.pid },
+    redact: { paths: redacted, remove: true },
+    timestamp: pino.stdTimeFunctions.isoTime,
+  });
 }

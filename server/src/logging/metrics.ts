@@ -8,7 +8,11 @@ export const requestSeconds = new Histogram({
   buckets: [0.005, 0.02, 0.06, 0.2, 0.5, 1, 3, 10],
 });
 
-export const runsEnded = new Counter({ name: 'tallystone_runs_ended_total', help: 'Runs that came to an end in this process', labelNames: ['kind', 'state'] as const });
+export const runsEnded = new Counter({
+  name: 'tallystone_runs_ended_total',
+  help: 'Runs that came to an end in this process',
+  labelNames: ['kind', 'state'] as const,
+});
 
 /** Serves the Prometheus text format on loopback only. */
 export async function startMetrics(port: number): Promise<Server> {

@@ -15,7 +15,11 @@ export interface Letter {
  *
  * @returns its id in the outbox
  */
-export async function postLetter({ sequelize, boss }: Pick<Context, 'sequelize' | 'boss'>, tx: Transaction, letter: Letter): Promise<string> {
+export async function postLetter(
+  { sequelize, boss }: Pick<Context, 'sequelize' | 'boss'>,
+  tx: Transaction,
+  letter: Letter,
+): Promise<string> {
   const [{ id }] = await rows<{ id: string }>(
     sequelize,
     'INSERT INTO mail_outbox (recipient, subject, body) VALUES ($1, $2, $3) RETURNING id',

@@ -24,7 +24,13 @@ export async function sendLetter({ pool, config, log }: Context, mailId: string)
       socketTimeout: 20_000,
     });
     // The same id at every try, so that a mail server can tell a second delivery from a second letter.
-    await transport.sendMail({ from, to: letter.recipient, subject: letter.subject, text: letter.body, messageId: `<${mailId}@tallystone>` });
+    await transport.sendMail({
+      from,
+      to: letter.recipient,
+      subject: letter.subject,
+      text: letter.body,
+      messageId: `<${mailId}@tallystone>`,
+    });
     transport.close();
   } catch (error) {
     const message = error instanceof Error ? error.message : String(error);

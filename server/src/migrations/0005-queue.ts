@@ -10,7 +10,17 @@ const twoWeeks = 14 * 24 * 60;
 const queues = [
   { name: 'long', options: { policy: 'standard', retryLimit: 0, expireInSeconds: 23 * 3600, retentionMinutes: twoWeeks } },
   { name: 'short', options: { policy: 'standard', retryLimit: 0, expireInSeconds: 3600, retentionMinutes: twoWeeks } },
-  { name: 'mail', options: { policy: 'standard', retryLimit: 12, retryDelay: 5, retryBackoff: true, expireInSeconds: 60, retentionMinutes: twoWeeks } },
+  {
+    name: 'mail',
+    options: {
+      policy: 'standard',
+      retryLimit: 12,
+      retryDelay: 5,
+      retryBackoff: true,
+      expireInSeconds: 60,
+      retentionMinutes: twoWeeks,
+    },
+  },
 ];
 
 /**

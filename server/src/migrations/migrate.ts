@@ -20,7 +20,9 @@ export async function migrate(ownerUrl: string, appUrl: string, list: readonly M
   const sequelize = new Sequelize(ownerUrl, { dialect: 'postgres', logging: false, pool: { max: 1 } });
   try {
     await guard.query('SELECT pg_advisory_lock($1)', [lock]);
-    await sequelize.query('CREATE TABLE IF NOT EXISTS migrations (name text PRIMARY KEY, applied_at timestamptz NOT NULL DEFAULT now())');
+    await sequelize.query(
+      'CREATE TABLE IF NOT EXISTS migrations (name text PRIMARY KEY, applied_at timestamptz NOT NULL DEFAULT now())',
+    );
     const app = quoteName(decodeURIComponent(new URL(appUrl).username));
     await sequelize.query(`GRANT SELECT ON migrations TO ${app}`);
     const umzug = new Umzug({
@@ -29,7 +31,8 @@ export async function migrate(ownerUrl: string, appUrl: string, list: readonly M
         // Written within the step's own transaction by apply(), so that a crash leaves neither half.
         logMigration: async () => undefined,
         unlogMigration: () => Promise.reject(new Error('Migrations go forward only')),
-        executed: async () => (await select(sequelize, 'SELECT name FROM migrations ORDER BY name')).map((row) => String(row['name'])),
+        executed: async () =>
+          (await select(sequelize, 'SELECT name FROM migrations ORDER BY name')).map((row) => String(row['name'])),
       },
       logger: undefined,
     });

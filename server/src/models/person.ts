@@ -1,5 +1,12 @@
 import type { PersonState, Role } from '@tallystone/contracts/people/schema';
-import { type CreationOptional, DataTypes, type InferAttributes, type InferCreationAttributes, Model, type Sequelize } from 'sequelize';
+import {
+  type CreationOptional,
+  DataTypes,
+  type InferAttributes,
+  type InferCreationAttributes,
+  Model,
+  type Sequelize,
+} from 'sequelize';
 
 /** Who acts: what policies decide by and what the record copies in. */
 export interface Actor {

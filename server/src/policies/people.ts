@@ -10,7 +10,9 @@ interface Subject {
 
 /** Admins look after people; compliance and auditors read everything. */
 export function canReadPeople(person: Actor): Decision {
-  return holds(person, 'admin', 'compliance', 'auditor') ? allowed : forbidden('Admins, compliance and auditors see who has an account.');
+  return holds(person, 'admin', 'compliance', 'auditor')
+    ? allowed
+    : forbidden('Admins, compliance and auditors see who has an account.');
 }
 
 export function canInvite(person: Actor): Decision {

@@ -15,5 +15,7 @@ export const readsOwnModels = (person: Actor): boolean => holds(person, 'modelle
 export const openToAdmins: readonly string[] = ['person', 'session', 'invitation', 'record', 'run', 'policy'];
 
 export function canVerifyRecord(person: Actor): Decision {
-  return holds(person, 'auditor', 'validator', 'compliance', 'admin') ? allowed : forbidden('Auditors, validators, compliance and admins verify the record.');
+  return holds(person, 'auditor', 'validator', 'compliance', 'admin')
+    ? allowed
+    : forbidden('Auditors, validators, compliance and admins verify the record.');
 }

@@ -1,4 +1,5 @@
 import type { Role } from '@tallystone/contracts/people/schema';
 
 /** Whether a person holds at least one of some roles. */
-export const holds = (person: { readonly roles: readonly Role[] }, ...roles: Role[]): boolean => roles.some((role) => person.roles.includes(role));
+export const holds = (person: { readonly roles: readonly Role[] }, ...roles: Role[]): boolean =>
+  roles.some((role) => person.roles.includes(role));

@@ -22,5 +22,7 @@ export function canReadRun(person: Actor, run: RunSubject): Decision {
 export function canCancelRun(person: Actor, run: RunSubject): Decision {
   const reads = canReadRun(person, run);
   if (!reads.allowed) return reads;
-  return run.personId === person.id || works(person, run) ? allowed : forbidden('Whoever started a run, or works on its model, can cancel it.');
+  return run.personId === person.id || works(person, run)
+    ? allowed
+    : forbidden('Whoever started a run, or works on its model, can cancel it.');
 }

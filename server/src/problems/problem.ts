@@ -50,13 +50,21 @@ export class Problem extends Error {
 }
 
 /** The one answer for what is not there and for what one may not see. */
-export const notFound = (): Problem => new Problem(404, problemCodes.notFound, 'There is nothing here, or nothing that you may see.');
+export const notFound = (): Problem =>
+  new Problem(404, problemCodes.notFound, 'There is nothing here, or nothing that you may see.');
 
-export const conflict = (code: string, detail: string, problems: readonly ProblemItem[] = []): Problem => new Problem(409, code, detail, { problems });
+export const conflict = (code: string, detail: string, problems: readonly ProblemItem[] = []): Problem =>
+  new Problem(409, code, detail, { problems });
 
 /** Every problem of an input at once; never the first alone. */
 export const invalid = (problems: readonly ProblemItem[]): Problem =>
-  new Problem(422, problemCodes.invalid, problems.length === 1 ? problems[0].message : `${problems.length} things are not valid.`, { problems });
+  new Problem(
+    422,
+    problemCodes.invalid,
+    problems.length === 1 ? problems[0].message : `${problems.length} things are not valid.`,
+    { problems },
+  );
 
 /** One field that is not valid. */
-export const invalidField = (field: string, code: string, message: string): Problem => invalid([{ code, message, where: { field } }]);
+export const invalidField = (field: string, code: string, message: string): Problem =>
+  invalid([{ code, message, where: { field } }]);

@@ -83,7 +83,8 @@ export class ThreadPool {
 
   private dispatch(): void {
     while (this.waiting.length > 0) {
-      const thread = [...this.threads].find((one) => one.current === null) ?? (this.threads.size < this.size ? this.start() : null);
+      const thread =
+        [...this.threads].find((one) => one.current === null) ?? (this.threads.size < this.size ? this.start() : null);
       if (!thread) return;
       const item = this.waiting.shift()!;
       thread.current = item;
@@ -145,7 +146,9 @@ export class ThreadPool {
 
 /** Where a thread starts: beside this file when run from source, under threads/ of the bundle otherwise. */
 function entry(): URL {
-  const candidates = import.meta.url.endsWith('.ts') ? ['./entry.mjs'] : ['./entry.js', './threads/entry.js', '../threads/entry.js'];
+  const candidates = import.meta.url.endsWith('.ts')
+    ? ['./entry.mjs']
+    : ['./entry.js', './threads/entry.js', '../threads/entry.js'];
   const found = candidates.map((path) => new URL(path, import.meta.url)).find((url) => existsSync(url));
   if (!found) throw new Error(`No thread entry beside ${import.meta.url}`);
   return found;

@@ -27,7 +27,10 @@ it('takes a cancelled task from the queue and ends one that does not listen with
   const second = pool.run('password.hash', { prepared: 'y' }, { signal: stop.signal });
   stop.abort(new Error('no longer wanted'));
   const ended = await Promise.allSettled([first, second]);
-  expect(ended.map((one) => (one.status === 'rejected' ? one.reason.message : one.status))).toEqual(['no longer wanted', 'no longer wanted']);
+  expect(ended.map((one) => (one.status === 'rejected' ? one.reason.message : one.status))).toEqual([
+    'no longer wanted',
+    'no longer wanted',
+  ]);
   expect(Date.now() - started).toBeLessThan(5000);
   await pool.close();
 });

@@ -22,8 +22,17 @@ export interface AccessRow {
   readonly params?: Readonly<Record<string, string>>;
 }
 
-export const everyRole = (verdict: Verdict): ByRole => ({ modeller: verdict, validator: verdict, compliance: verdict, admin: verdict, auditor: verdict });
-export const only = (roles: readonly Role[], others: Verdict = 403): ByRole => ({ ...everyRole(others), ...Object.fromEntries(roles.map((role) => [role, 'yes'])) });
+export const everyRole = (verdict: Verdict): ByRole => ({
+  modeller: verdict,
+  validator: verdict,
+  compliance: verdict,
+  admin: verdict,
+  auditor: verdict,
+});
+export const only = (roles: readonly Role[], others: Verdict = 403): ByRole => ({
+  ...everyRole(others),
+  ...Object.fromEntries(roles.map((role) => [role, 'yes'])),
+});
 
 /** For anyone, signed in or not. */
 export const open = (route: string): AccessRow => ({ route, anonymous: 'yes', own: everyRole('yes') });

@@ -17,7 +17,11 @@ export const baseRows: readonly AccessRow[] = [
   open('POST /api/set-up'),
 
   forRoles('GET /api/people', ['admin', 'compliance', 'auditor']),
-  { route: 'GET /api/people/:personId', own: only(['admin', 'compliance', 'auditor']), nonexistent: { ...only([]), admin: 404, compliance: 404, auditor: 404 } },
+  {
+    route: 'GET /api/people/:personId',
+    own: only(['admin', 'compliance', 'auditor']),
+    nonexistent: { ...only([]), admin: 404, compliance: 404, auditor: 404 },
+  },
   { route: 'PUT /api/people/:personId/roles', own: only(['admin']), nonexistent: { ...only([]), admin: 404 } },
   { route: 'POST /api/people/:personId/disable', own: only(['admin']), nonexistent: { ...only([]), admin: 404 } },
   { route: 'POST /api/people/:personId/enable', own: only(['admin']), nonexistent: { ...only([]), admin: 404 } },
@@ -33,7 +37,15 @@ export const baseRows: readonly AccessRow[] = [
   forRoles('POST /api/record/verifications', ['validator', 'compliance', 'admin', 'auditor']),
 
   signedIn('GET /api/runs'),
-  { route: 'GET /api/runs/:runId', another: { modeller: 404, validator: 'yes', compliance: 'yes', admin: 404, auditor: 'yes' }, nonexistent: everyRole(404) },
-  { route: 'POST /api/runs/:runId/cancel', another: { modeller: 404, validator: 403, compliance: 403, admin: 404, auditor: 403 }, nonexistent: everyRole(404) },
+  {
+    route: 'GET /api/runs/:runId',
+    another: { modeller: 404, validator: 'yes', compliance: 'yes', admin: 404, auditor: 'yes' },
+    nonexistent: everyRole(404),
+  },
+  {
+    route: 'POST /api/runs/:runId/cancel',
+    another: { modeller: 404, validator: 403, compliance: 403, admin: 404, auditor: 403 },
+    nonexistent: everyRole(404),
+  },
   signedIn('GET /api/events'),
 ];

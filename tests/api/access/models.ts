@@ -10,9 +10,25 @@ export const modelRows: readonly AccessRow[] = [
   { route: 'POST /api/models', own: only(['modeller']) },
   { route: 'GET /api/models/:modelId', own: { ...seen, modeller: 'yes' }, another: seen, nonexistent: everyRole(404) },
   { route: 'PATCH /api/models/:modelId', own: { ...edited, modeller: 'yes' }, another: edited, nonexistent: everyRole(404) },
-  { route: 'GET /api/models/:modelId/member-candidates', own: { ...managed, modeller: 'yes' }, another: managed, nonexistent: everyRole(404) },
-  { route: 'POST /api/models/:modelId/members', own: { ...managed, modeller: 'yes' }, another: managed, nonexistent: everyRole(404) },
-  { route: 'DELETE /api/models/:modelId/members/:personId', own: { ...managed, modeller: 'yes' }, another: managed, nonexistent: everyRole(404), params: { personId: 'personId' } },
+  {
+    route: 'GET /api/models/:modelId/member-candidates',
+    own: { ...managed, modeller: 'yes' },
+    another: managed,
+    nonexistent: everyRole(404),
+  },
+  {
+    route: 'POST /api/models/:modelId/members',
+    own: { ...managed, modeller: 'yes' },
+    another: managed,
+    nonexistent: everyRole(404),
+  },
+  {
+    route: 'DELETE /api/models/:modelId/members/:personId',
+    own: { ...managed, modeller: 'yes' },
+    another: managed,
+    nonexistent: everyRole(404),
+    params: { personId: 'personId' },
+  },
   readsModel('GET /api/models/:modelId/work'),
 ];
 

@@ -4,7 +4,11 @@ import type { z } from 'zod';
 export type QueueName = 'long' | 'short';
 
 /** A kind of work, apart from the code that does it: whoever starts a run needs this alone. */
-export interface JobDefinition<Kind extends string = string, Payload extends z.ZodType = z.ZodType, Result extends z.ZodType = z.ZodType> {
+export interface JobDefinition<
+  Kind extends string = string,
+  Payload extends z.ZodType = z.ZodType,
+  Result extends z.ZodType = z.ZodType,
+> {
   /** `entity.verb`. */
   readonly kind: Kind;
   /** `short` for a second or two, `long` for what may keep all cores busy. */

@@ -19,19 +19,26 @@ export function describeApi(routes: readonly Route[]): Record<string, unknown> {
       name = nameOf(schema, names);
       names.set(schema, name);
       // JSON Schema as zod writes it is a schema of OpenAPI 3.1; the generator's types name fewer keywords.
-      registry.registerComponent('schemas', name, toJsonSchema(schema, io) as never);
+      registry.registerComponent('schemas', name, toJsonSchema(schema, io));
     }
     return { $ref: `#/components/schemas/${name}` };
   };
   for (const route of routes) registry.registerPath(describe(route, refer));
   const document = new OpenApiGeneratorV31(registry.definitions).generateDocument({
     openapi: '3.1.0',
-    info: { title: 'Tallystone', version: '1', description: 'Changes need the XSRF-TOKEN cookie repeated in X-XSRF-TOKEN. Problems are RFC 9457.' },
+    info: {
+      title: 'Tallystone',
+      version: '1',
+      description: 'Changes need the XSRF-TOKEN cookie repeated in X-XSRF-TOKEN. Problems are RFC 9457.',
+    },
   });
   return JSON.parse(JSON.stringify(document)) as Record<string, unknown>;
 }
 
-function describe({ endpoint, access, recipe }: Route, refer: (schema: z.ZodType, io: 'input' | 'output') => { $ref: string }): RouteConfig {
+function describe(
+  { endpoint, access, recipe }: Route,
+  refer: (schema: z.ZodType, io: 'input' | 'output') => { $ref: string },
+): RouteConfig {
   const { response, body } = endpoint;
   const status = String(endpoint.status ?? (response === 'nothing' ? 204 : 200));
   return {
@@ -43,7 +50,10 @@ function describe({ endpoint, access, recipe }: Route, refer: (schema: z.ZodType
     parameters: [...parametersOf(endpoint.params, 'path'), ...parametersOf(endpoint.query, 'query')],
     ...(body ? { requestBody: { required: true, content: contentOf(body, (schema) => refer(schema, 'input')) } } : {}),
     responses: {
-      [status]: { description: 'Done', ...(response === 'nothing' ? {} : { content: contentOf(response, (schema) => refer(schema, 'output')) }) },
+      [status]: {
+        description: 'Done',
+        ...(response === 'nothing' ? {} : { content: contentOf(response, (schema) => refer(schema, 'output')) }),
+      },
       default: {
         description: access === 'signed-in' ? 'A problem; 401 when signed out' : 'A problem',
         content: { 'application/problem+json': { schema: refer(ProblemDetails, 'output') } },
@@ -52,7 +62,10 @@ function describe({ endpoint, access, recipe }: Route, refer: (schema: z.ZodType
   };
 }
 
-function contentOf(shape: 'bytes' | 'events' | z.ZodType, refer: (schema: z.ZodType) => { $ref: string }): Record<string, { schema: { $ref: string } | { type: 'string'; format?: string } }> {
+function contentOf(
+  shape: 'bytes' | 'events' | z.ZodType,
+  refer: (schema: z.ZodType) => { $ref: string },
+): Record<string, { schema: { $ref: string } | { type: 'string'; format?: string } }> {
   if (shape === 'bytes') return { 'application/octet-stream': { schema: { type: 'string' as const, format: 'binary' } } };
   if (shape === 'events') return { 'text/event-stream': { schema: { type: 'string' as const } } };
   return { 'application/json': { schema: refer(shape) } };
@@ -60,7 +73,10 @@ function contentOf(shape: 'bytes' | 'events' | z.ZodType, refer: (schema: z.ZodT
 
 function parametersOf(schema: Endpoint['query'], place: 'path' | 'query') {
   if (!schema) return [];
-  const { properties = {}, required = [] } = toJsonSchema(schema, 'input') as { properties?: Record<string, JsonSchema>; required?: string[] };
+  const { properties = {}, required = [] } = toJsonSchema(schema, 'input') as {
+    properties?: Record<string, JsonSchema>;
+    required?: string[];
+  };
   return Object.entries(properties).map(([name, property]) => ({
     name,
     in: place,
@@ -71,7 +87,12 @@ function parametersOf(schema: Endpoint['query'], place: 'path' | 'query') {
 
 function toJsonSchema(schema: z.ZodType, io: 'input' | 'output'): JsonSchema {
   // A registry without names: every nested schema is written out where it stands, so that no reference leads out of the document.
-  const { $schema: _, ...rest } = z.toJSONSchema(schema, { io, unrepresentable: 'any', reused: 'inline', metadata: z.registry() }) as JsonSchema;
+  const { $schema: _, ...rest } = z.toJSONSchema(schema, {
+    io,
+    unrepresentable: 'any',
+    reused: 'inline',
+    metadata: z.registry(),
+  }) as JsonSchema;
   return rest;
 }
 

@@ -71,4 +71,8 @@ function cookieOf(request: Request, name: string): string | null {
 }
 
 const crossSite = (): Problem =>
-  new Problem(403, problemCodes.crossSite, 'The request does not come from a page of this session. Load the page again and try once more.');
+  new Problem(
+    403,
+    problemCodes.crossSite,
+    'The request does not come from a page of this session. Load the page again and try once more.',
+  );

@@ -17,8 +17,13 @@ export function matchRevision(request: Request, revision: number | string): void
   }
   const tags = sent.split(',').map((tag) => tag.trim());
   if (!tags.includes(tagOf(revision))) {
-    throw new Problem(412, problemCodes.stale, 'Someone else changed this since you read it. Look at it as it is now, then decide.', {
-      headers: { ETag: tagOf(revision) },
-    });
+    throw new Problem(
+      412,
+      problemCodes.stale,
+      'Someone else changed this since you read it. Look at it as it is now, then decide.',
+      {
+        headers: { ETag: tagOf(revision) },
+      },
+    );
   }
 }

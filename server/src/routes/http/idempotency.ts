@@ -27,7 +27,12 @@ const turns = new Map<string, Promise<unknown>>();
  *
  * @throws Problem 422 when the key was used with another body
  */
-export async function once(context: Context, asked: Asked, response: Response, steps: (tx: Transaction) => Promise<unknown>): Promise<unknown> {
+export async function once(
+  context: Context,
+  asked: Asked,
+  response: Response,
+  steps: (tx: Transaction) => Promise<unknown>,
+): Promise<unknown> {
   const key = asked.request.headers['idempotency-key'];
   if (key === undefined) return inTransaction(context.sequelize, steps);
   if (typeof key !== 'string' || !keyShape.test(key)) {

@@ -17,7 +17,9 @@ export function limitRequests(): RequestHandler {
     standardHeaders: false,
     legacyHeaders: false,
     handler: () => {
-      throw new Problem(429, problemCodes.tooMany, 'Too many requests within a minute. Wait a little.', { headers: { 'Retry-After': '60' } });
+      throw new Problem(429, problemCodes.tooMany, 'Too many requests within a minute. Wait a little.', {
+        headers: { 'Retry-After': '60' },
+      });
     },
   });
 }

@@ -9,6 +9,7 @@ import { requestSeconds } from '../../logging/metrics';
 import { demand } from '../../policies/decision';
 import { problemsOf } from '../../problems/from-error';
 import { Problem, invalid, notFound } from '../../problems/problem';
+import { finished, requestIdOf } from './callback';
 import { checkCrossSite } from './cross-site';
 import { matchRevision, tagOf } from './entity-tag';
 import { once } from './idempotency';
@@ -69,7 +70,8 @@ function handlerOf(context: Context, route: Route): RequestHandler {
     }
     let body: unknown;
     if (!changes(endpoint) || recipe.ownTransactions) body = await steps(null);
-    else if (recipe.idempotent && person) body = await once(context, { person, request, endpoint, body: call.body }, response, steps);
+    else if (recipe.idempotent && person)
+      body = await once(context, { person, request, endpoint, body: call.body }, response, steps);
     else body = await inTransaction(context.sequelize, steps);
     if (recipe.afterwards) await recipe.afterwards(settled);
     send(endpoint, response, body);
@@ -89,7 +91,7 @@ async function read(
     if (hasBody(request) && !request.is('application/json')) {
       throw new Problem(415, problemCodes.unsupported, 'This route reads JSON (Content-Type: application/json).');
     }
-    await new Promise<void>((resolve, reject) => readJson(request, response, (error: unknown) => (error ? reject(error) : resolve())));
+    await finished((done) => readJson(request, response, done));
   }
   // A row that cannot exist is a row that does not: an identifier that is no uuid is not found rather than invalid.
   const params = endpoint.params?.safeParse(request.params);
@@ -97,20 +99,20 @@ async function read(
   const problems: ProblemItem[] = [];
   const query = endpoint.query?.safeParse(request.query);
   if (query && !query.success) problems.push(...problemsOf(query.error, 'query'));
-  const body = wantsJson ? (endpoint.body as Exclude<Endpoint['body'], 'bytes' | undefined>).safeParse(request.body ?? {}) : undefined;
+  const body = wantsJson ? endpoint.body.safeParse(request.body ?? {}) : undefined;
   if (body && !body.success) problems.push(...problemsOf(body.error, 'body'));
   const refusal = problems.length > 0 ? invalid(problems) : null;
   const call: Call<Endpoint, Access> = {
     context,
     person,
-    params: (params?.data ?? {}) as never,
-    query: (query?.data ?? {}) as never,
+    params: params?.data ?? {},
+    query: query?.data ?? {},
     body: body?.data as never,
     tx: null as never,
     subject: undefined,
     request,
     response,
-    requestId: String(request.id),
+    requestId: requestIdOf(request),
     address: request.ip ?? 'unknown',
     match: (revision) => matchRevision(request, revision),
     tag: (revision) => void response.setHeader('ETag', tagOf(revision)),
@@ -118,7 +120,8 @@ async function read(
   return { call, refusal };
 }
 
-const hasBody = (request: Request): boolean => request.headers['transfer-encoding'] !== undefined || Number(request.headers['content-length'] ?? 0) > 0;
+const hasBody = (request: Request): boolean =>
+  request.headers['transfer-encoding'] !== undefined || Number(request.headers['content-length'] ?? 0) > 0;
 
 /** Holds the answer to its schema: what the contract does not name never leaves. */
 function present(endpoint: Endpoint, answer: unknown): unknown {

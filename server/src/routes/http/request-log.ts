@@ -17,7 +17,11 @@ export function logRequests(log: Log): RequestHandler {
     },
     autoLogging: { ignore: (request) => request.url?.startsWith('/health/') ?? false },
     serializers: {
-      req: (request: { id: string; method: string; url: string }) => ({ id: request.id, method: request.method, path: pathOf(request.url) }),
+      req: (request: { id: string; method: string; url: string }) => ({
+        id: request.id,
+        method: request.method,
+        path: pathOf(request.url),
+      }),
       res: (response: { statusCode: number }) => ({ status: response.statusCode }),
     },
     customLogLevel: (_request, response, error) => (error || response.statusCode >= 500 ? 'error' : 'info'),

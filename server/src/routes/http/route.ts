@@ -79,7 +79,10 @@ export interface Route {
  *   act: ({ subject, person, tag }) => (tag(subject.revision), presentPerson(subject, person)),
  * });
  */
-export function defineRoute<const E extends Endpoint, const A extends Access, Subject = undefined>(endpoint: E, recipe: Recipe<E, A, Subject>): Route {
+export function defineRoute<const E extends Endpoint, const A extends Access, Subject = undefined>(
+  endpoint: E,
+  recipe: Recipe<E, A, Subject>,
+): Route {
   // The steps are typed by their own endpoint; the mount only hands each recipe the calls made for it.
   return { endpoint, access: recipe.access, recipe: recipe as unknown as Recipe<Endpoint, Access, unknown> };
 }

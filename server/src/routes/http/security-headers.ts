@@ -8,7 +8,10 @@ import { isHttps } from './cross-site';
 export function apiHeaders(config: Config): RequestHandler[] {
   return [
     helmet({
-      contentSecurityPolicy: { useDefaults: false, directives: { defaultSrc: ["'none'"], frameAncestors: ["'none'"], baseUri: ["'none'"] } },
+      contentSecurityPolicy: {
+        useDefaults: false,
+        directives: { defaultSrc: ["'none'"], frameAncestors: ["'none'"], baseUri: ["'none'"] },
+      },
       ...others(config),
     }),
     (_request, response, next) => {

@@ -24,7 +24,13 @@ declare module 'express-session' {
 export function sessionCookie(context: Context): RequestHandler {
   const Store = connectPgSimple(session);
   return session({
-    store: new Store({ pool: context.pool, tableName: 'session', ttl: idleSeconds, pruneSessionInterval: 900, errorLog: (...args) => context.log.warn({ args }, 'session store') }),
+    store: new Store({
+      pool: context.pool,
+      tableName: 'session',
+      ttl: idleSeconds,
+      pruneSessionInterval: 900,
+      errorLog: (...args) => context.log.warn({ args }, 'session store'),
+    }),
     name: sessionCookieName(context),
     secret: deriveKey(context.config.keys.session, 'session').toString('base64'),
     resave: false,

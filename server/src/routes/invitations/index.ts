@@ -1,5 +1,11 @@
 import type { AnswerOf } from '@tallystone/contracts/endpoint';
-import { acceptInvitation, invite, listInvitations, lookUpInvitation, withdrawInvitation } from '@tallystone/contracts/invitations/endpoints';
+import {
+  acceptInvitation,
+  invite,
+  listInvitations,
+  lookUpInvitation,
+  withdrawInvitation,
+} from '@tallystone/contracts/invitations/endpoints';
 import { canInvite } from '../../policies/people';
 import * as accepting from '../../services/invitations/accept';
 import * as inviting from '../../services/invitations/invite';

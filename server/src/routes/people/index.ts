@@ -19,7 +19,9 @@ export const peopleRoutes: readonly Route[] = [
   defineRoute(listPeople, {
     access: 'signed-in',
     admit: canReadPeople,
-    act: async ({ context, person }) => ({ people: (await people.listPeople(context.sequelize)).map((one) => present(one, person)) }),
+    act: async ({ context, person }) => ({
+      people: (await people.listPeople(context.sequelize)).map((one) => present(one, person)),
+    }),
   }),
 
   defineRoute(readPerson, {

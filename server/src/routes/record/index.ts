@@ -3,7 +3,14 @@ import { listRecord, readRecordHead, verifyRecord } from '@tallystone/contracts/
 import { verifyRecordJob } from '../../jobs/definitions/record';
 import { startRun } from '../../jobs/start-run';
 import type { Actor } from '../../models/person';
-import { canReadRecord, canVerifyRecord, openToAdmins, readsOwnModels, readsRecordOutline, readsWholeRecord } from '../../policies/record';
+import {
+  canReadRecord,
+  canVerifyRecord,
+  openToAdmins,
+  readsOwnModels,
+  readsRecordOutline,
+  readsWholeRecord,
+} from '../../policies/record';
 import * as record from '../../services/record/list';
 import { recordHead } from '../../services/record/verify';
 import { describeRun } from '../../services/runs/find';
@@ -28,7 +35,10 @@ export const recordRoutes: readonly Route[] = [
         ownModelsOf: readsOwnModels(person) ? person.id : null,
       });
       const page = found.slice(0, query.limit);
-      return { entries: page.map((row) => present(row, person)), next: found.length > query.limit ? page[page.length - 1].sequence : null };
+      return {
+        entries: page.map((row) => present(row, person)),
+        next: found.length > query.limit ? page[page.length - 1].sequence : null,
+      };
     },
   }),
 

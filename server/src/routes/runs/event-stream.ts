@@ -15,7 +15,10 @@ const mostWaiting = 1024 * 1024;
  */
 export async function streamTo(context: Context, person: Actor, request: Request, response: Response): Promise<void> {
   const asked = Number(request.headers['last-event-id']);
-  let last = Number.isSafeInteger(asked) && asked >= 0 && request.headers['last-event-id'] !== undefined ? asked : await latestEventId(context.sequelize, person.id);
+  let last =
+    Number.isSafeInteger(asked) && asked >= 0 && request.headers['last-event-id'] !== undefined
+      ? asked
+      : await latestEventId(context.sequelize, person.id);
   const sessionId = request.sessionID;
   response.writeHead(200, { 'Content-Type': 'text/event-stream', 'Cache-Control': 'no-store', 'X-Accel-Buffering': 'no' });
   // The first line opens the stream at once, with the id to come back with.

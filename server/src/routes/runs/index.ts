@@ -10,7 +10,10 @@ export const runRoutes: readonly Route[] = [
   defineRoute(listRuns, {
     access: 'signed-in',
     async act({ context, person, query }) {
-      const found = await runs.listRuns(context.sequelize, person.id, { modelId: query.modelId, active: query.active === 'true' });
+      const found = await runs.listRuns(context.sequelize, person.id, {
+        modelId: query.modelId,
+        active: query.active === 'true',
+      });
       return { runs: found.filter((run) => canReadRun(person, run).allowed).map((run) => presentRun(run, person)) };
     },
   }),

@@ -1,6 +1,13 @@
 import { randomUUID } from 'node:crypto';
 import type { AnswerOf } from '@tallystone/contracts/endpoint';
-import { changePassword, endOwnSession, listOwnSessions, readSession, signIn, signOut } from '@tallystone/contracts/session/endpoints';
+import {
+  changePassword,
+  endOwnSession,
+  listOwnSessions,
+  readSession,
+  signIn,
+  signOut,
+} from '@tallystone/contracts/session/endpoints';
 import type { Request, Response } from 'express';
 import type { Context } from '../../context';
 import type { Actor } from '../../models/person';
@@ -49,7 +56,12 @@ export const sessionRoutes: readonly Route[] = [
     async act({ context, request, response, person, address }) {
       await endSession(request);
       await recordSignOut(context, person, address);
-      response.clearCookie(sessionCookieName(context), { path: '/', httpOnly: true, sameSite: 'lax', secure: isHttps(context.config) });
+      response.clearCookie(sessionCookieName(context), {
+        path: '/',
+        httpOnly: true,
+        sameSite: 'lax',
+        secure: isHttps(context.config),
+      });
       return present(context, request, response, null);
     },
   }),

@@ -35,7 +35,11 @@ export function listInvitations({ sequelize }: Context): Promise<InvitationRow[]
   return rows<InvitationRow>(sequelize, `${select} ORDER BY i.created_at DESC LIMIT 500`);
 }
 
-export async function findInvitation({ sequelize }: Context, id: string, tx: Transaction | null = null): Promise<InvitationRow | null> {
+export async function findInvitation(
+  { sequelize }: Context,
+  id: string,
+  tx: Transaction | null = null,
+): Promise<InvitationRow | null> {
   const [found] = await rows<InvitationRow>(sequelize, `${select} WHERE i.id = $1 ${tx ? 'FOR UPDATE OF i' : ''}`, [id], tx);
   return found ?? null;
 }
@@ -45,28 +49,58 @@ export async function findInvitation({ sequelize }: Context, id: string, tx: Tra
  *
  * @throws Problem 409 when the address has an account or an open invitation
  */
-export async function invite(context: Context, tx: Transaction, actor: Actor, asked: { name: string; email: string; roles: Role[] }): Promise<InvitationRow> {
+export async function invite(
+  context: Context,
+  tx: Transaction,
+  actor: Actor,
+  asked: { name: string; email: string; roles: Role[] },
+): Promise<InvitationRow> {
   const { sequelize, config } = context;
   await rows(sequelize, `SELECT pg_advisory_xact_lock(hashtextextended('invite:' || $1, 0))`, [asked.email], tx);
   if (await Person.findOne({ where: { email: asked.email }, attributes: ['id'], transaction: tx })) {
     throw conflict('email-taken', 'There is an account with this address already.');
   }
-  const open = await rows(sequelize, `${select} WHERE i.email = $1 AND i.accepted_at IS NULL AND i.withdrawn_at IS NULL AND i.expires_at > now()`, [asked.email], tx);
-  if (open.length > 0) throw conflict('already-invited', 'There is an open invitation for this address. Withdraw it to send another.');
+  const open = await rows(
+    sequelize,
+    `${select} WHERE i.email = $1 AND i.accepted_at IS NULL AND i.withdrawn_at IS NULL AND i.expires_at > now()`,
+    [asked.email],
+    tx,
+  );
+  if (open.length > 0)
+    throw conflict('already-invited', 'There is an open invitation for this address. Withdraw it to send another.');
   const { token, hash } = makeToken();
   const [{ until }] = await rows<{ until: Date }>(sequelize, `SELECT now() + interval '${days} days' AS until`, [], tx);
   const link = `${addressOf(config)}/invitation/${token}`;
-  const mailId = await postLetter(context, tx, invitationLetter({ to: asked.email, name: asked.name, from: actor.name, link, days }));
-  const made = await Invitation.create({ ...asked, tokenHash: hash, invitedBy: actor.id, mailId, expiresAt: until }, { transaction: tx });
+  const mailId = await postLetter(
+    context,
+    tx,
+    invitationLetter({ to: asked.email, name: asked.name, from: actor.name, link, days }),
+  );
+  const made = await Invitation.create(
+    { ...asked, tokenHash: hash, invitedBy: actor.id, mailId, expiresAt: until },
+    { transaction: tx },
+  );
   await appendRecord(tx, { actor, action: 'invitation.sent', entity: 'invitation', entityId: made.id, after: asked });
   return (await findInvitation(context, made.id, tx))!;
 }
 
-export async function withdrawInvitation(context: Context, tx: Transaction, actor: Actor, subject: InvitationRow): Promise<InvitationRow> {
-  if (subject.state !== 'open') throw conflict('not-open', `This invitation is ${subject.state}; only an open one can be withdrawn.`);
-  await Invitation.update({ withdrawnAt: fn('now') as unknown as Date }, { where: { id: subject.id }, transaction: tx });
+export async function withdrawInvitation(
+  context: Context,
+  tx: Transaction,
+  actor: Actor,
+  subject: InvitationRow,
+): Promise<InvitationRow> {
+  if (subject.state !== 'open')
+    throw conflict('not-open', `This invitation is ${subject.state}; only an open one can be withdrawn.`);
+  await Invitation.update({ withdrawnAt: fn('now') }, { where: { id: subject.id }, transaction: tx });
   const { name, email, roles } = subject;
-  await appendRecord(tx, { actor, action: 'invitation.withdrawn', entity: 'invitation', entityId: subject.id, before: { name, email, roles } });
+  await appendRecord(tx, {
+    actor,
+    action: 'invitation.withdrawn',
+    entity: 'invitation',
+    entityId: subject.id,
+    before: { name, email, roles },
+  });
   return (await findInvitation(context, subject.id, tx))!;
 }
 

@@ -22,7 +22,14 @@ describe('the blocklist', () => {
     expect(refusalOf(password, person)).toContain(why);
   });
 
-  it.each(['tide-pools-at-noon', 'herons over the flats', 'vier Möwen auf dem Deich', '雨の日は図書館で本を読むことにしている', 'kT9$wq2LmZx7#vBn', 'password but with a longer story of my own'])('accepts %s', (password) => {
+  it.each([
+    'tide-pools-at-noon',
+    'herons over the flats',
+    'vier Möwen auf dem Deich',
+    '雨の日は図書館で本を読むことにしている',
+    'kT9$wq2LmZx7#vBn',
+    'password but with a longer story of my own',
+  ])('accepts %s', (password) => {
     expect(refusalOf(password, person)).toBeNull();
   });
 });

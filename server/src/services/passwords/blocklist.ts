@@ -17,7 +17,14 @@ const words = [
   'monkey', 'dragon', 'football', 'baseball', 'sunshine', 'princess', 'login', 'please', 'summer', 'winter', 'spring', 'autumn', 'monday', 'january', 'test', 'demo',
   'scorecard', 'credit', 'tallystone', 'tally', 'stone', 'modeller', 'validator', 'compliance', 'auditor',
 ]; // prettier-ignore
-const runs = ['abcdefghijklmnopqrstuvwxyz', '01234567890123456789', 'qwertyuiopasdfghjklzxcvbnm', 'qwertzuiopasdfghjklyxcvbnm', '1q2w3e4r5t6y7u8i9o0p', '1qaz2wsx3edc4rfv5tgb6yhn7ujm'];
+const runs = [
+  'abcdefghijklmnopqrstuvwxyz',
+  '01234567890123456789',
+  'qwertyuiopasdfghjklzxcvbnm',
+  'qwertzuiopasdfghjklyxcvbnm',
+  '1q2w3e4r5t6y7u8i9o0p',
+  '1qaz2wsx3edc4rfv5tgb6yhn7ujm',
+];
 
 /** What stays of a password once everything guessable is taken out of it must still be this long. */
 const leastOwn = 6;
@@ -36,13 +43,19 @@ export function refusalOf(password: string, context: readonly string[]): string 
   if (new Set(plain).size < 5) return 'It uses too few different characters.';
   const { left, found } = strip(unleet(plain).replace(/[^\p{L}\p{N}]/gu, ''), context);
   if (left.length < leastOwn) {
-    return found.length > 0 ? `It is made of what is guessed first (${found.join(', ')}).` : 'It is a run of neighbouring keys or digits.';
+    return found.length > 0
+      ? `It is made of what is guessed first (${found.join(', ')}).`
+      : 'It is a run of neighbouring keys or digits.';
   }
   return null;
 }
 
 /** Digits and signs that people put in place of letters. */
-const unleet = (text: string): string => text.replace(/[013457@$]/g, (sign) => ({ '0': 'o', '1': 'i', '3': 'e', '4': 'a', '5': 's', '7': 't', '@': 'a', $: 's' })[sign] ?? sign);
+const unleet = (text: string): string =>
+  text.replace(
+    /[013457@$]/g,
+    (sign) => ({ '0': 'o', '1': 'i', '3': 'e', '4': 'a', '5': 's', '7': 't', '@': 'a', $: 's' })[sign] ?? sign,
+  );
 
 function strip(text: string, context: readonly string[]): { left: string; found: string[] } {
   const own = context.flatMap((part) => part.toLowerCase().split(/[^\p{L}\p{N}]+/u)).filter((part) => part.length >= 4);

@@ -8,7 +8,9 @@ import { runInThread } from '../../threads/run-in-thread';
  * normalisation (NFKC, NIST SP 800-63B-4), because keyboards differ in how they write the same letter. The key lies outside the database.
  */
 function prepare({ config }: Pick<Context, 'config'>, password: string): string {
-  return createHmac('sha256', deriveKey(config.keys.identifiers, 'passwords')).update(password.normalize('NFKC')).digest('base64');
+  return createHmac('sha256', deriveKey(config.keys.identifiers, 'passwords'))
+    .update(password.normalize('NFKC'))
+    .digest('base64');
 }
 
 export function hashPassword(context: Pick<Context, 'config'>, password: string): Promise<string> {

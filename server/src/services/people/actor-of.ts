@@ -12,6 +12,12 @@ export async function actorOf(personId: string, tx?: Transaction): Promise<Actor
 }
 
 export async function rolesOf(personId: string, tx?: Transaction): Promise<Actor['roles']> {
-  const rows = await PersonRole.findAll({ where: { personId }, attributes: ['role'], order: ['role'], raw: true, transaction: tx ?? null });
+  const rows = await PersonRole.findAll({
+    where: { personId },
+    attributes: ['role'],
+    order: ['role'],
+    raw: true,
+    transaction: tx ?? null,
+  });
   return rows.map((row) => row.role);
 }

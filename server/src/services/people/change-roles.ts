@@ -11,7 +11,13 @@ import { type PersonRow, findPerson } from './list';
 const lock = 7_415_003;
 
 /** Gives and takes roles so that exactly these remain; ends the person's sessions when anything changed. */
-export async function changeRoles(context: Context, tx: Transaction, actor: Actor, subject: PersonRow, asked: { roles: readonly Role[]; reason: string }): Promise<PersonRow> {
+export async function changeRoles(
+  context: Context,
+  tx: Transaction,
+  actor: Actor,
+  subject: PersonRow,
+  asked: { roles: readonly Role[]; reason: string },
+): Promise<PersonRow> {
   await holdAdmins(context, tx);
   const before = [...subject.roles].sort();
   const after = [...asked.roles].sort();
@@ -35,7 +41,13 @@ export async function changeRoles(context: Context, tx: Transaction, actor: Acto
 }
 
 /** Disables or enables an account; a disabled person's sessions end. */
-export async function changeState(context: Context, tx: Transaction, actor: Actor, subject: PersonRow, asked: { state: PersonState; reason: string }): Promise<PersonRow> {
+export async function changeState(
+  context: Context,
+  tx: Transaction,
+  actor: Actor,
+  subject: PersonRow,
+  asked: { state: PersonState; reason: string },
+): Promise<PersonRow> {
   await holdAdmins(context, tx);
   if (subject.state === asked.state) throw conflict('same-state', `This person is ${asked.state} already.`);
   await Person.update({ state: asked.state }, { where: { id: subject.id }, transaction: tx });
@@ -67,7 +79,9 @@ async function demandAnAdmin({ sequelize }: Context, tx: Transaction): Promise<v
     [],
     tx,
   );
-  if (admins === 0) throw conflict('last-admin', 'This would leave nobody who can look after people. Make another person admin first.');
+  if (admins === 0)
+    throw conflict('last-admin', 'This would leave nobody who can look after people. Make another person admin first.');
 }
 
-const touch = (tx: Transaction, id: string) => Person.update({ revision: literal('revision + 1') as unknown as number }, { where: { id }, transaction: tx });
+const touch = (tx: Transaction, id: string) =>
+  Person.update({ revision: literal('revision + 1') }, { where: { id }, transaction: tx });

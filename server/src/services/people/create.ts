@@ -17,7 +17,8 @@ export interface NewPerson {
 /** Opens an account. @throws Problem 409 when the address has one */
 export async function createPerson(tx: Transaction, asked: NewPerson): Promise<Actor> {
   const { name, email, passwordHash, roles, by } = asked;
-  if (await Person.findOne({ where: { email }, attributes: ['id'], transaction: tx })) throw conflict('email-taken', 'There is an account with this address already.');
+  if (await Person.findOne({ where: { email }, attributes: ['id'], transaction: tx }))
+    throw conflict('email-taken', 'There is an account with this address already.');
   const person = await Person.create({ name, email, passwordHash }, { transaction: tx });
   await PersonRole.bulkCreate(roles.map((role) => ({ personId: person.id, role })), { transaction: tx }); // prettier-ignore
   const actor: Actor = { id: person.id, name, email, roles };

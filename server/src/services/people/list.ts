@@ -22,6 +22,11 @@ export function listPeople(sequelize: Sequelize): Promise<PersonRow[]> {
 
 /** One person; with a transaction the row is locked for a change. */
 export async function findPerson(sequelize: Sequelize, id: string, tx: Transaction | null = null): Promise<PersonRow | null> {
-  const [person] = await rows<PersonRow>(sequelize, `SELECT ${columns} FROM people p WHERE p.id = $1 ${tx ? 'FOR UPDATE OF p' : ''}`, [id], tx);
+  const [person] = await rows<PersonRow>(
+    sequelize,
+    `SELECT ${columns} FROM people p WHERE p.id = $1 ${tx ? 'FOR UPDATE OF p' : ''}`,
+    [id],
+    tx,
+  );
   return person ?? null;
 }

@@ -6,7 +6,8 @@ import { RecordRow } from '../../models/record';
 import { type Link, chainStart, hashLink } from './chain';
 
 /** Who did it: a person, or the product itself (a name and no identity). */
-export type RecordActor = Pick<Actor, 'id' | 'name' | 'roles'> | { readonly id: null; readonly name: string; readonly roles: readonly [] };
+export type RecordActor =
+  Pick<Actor, 'id' | 'name' | 'roles'> | { readonly id: null; readonly name: string; readonly roles: readonly [] };
 
 /** An act that no person did: the server at its first start, or an unknown person at the door. */
 export const nobody = (name: string): RecordActor => ({ id: null, name, roles: [] });

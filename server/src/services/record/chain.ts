@@ -29,6 +29,20 @@ export const chainStart = '0'.repeat(64);
  */
 export function hashLink(previous: string, link: Link): string {
   const { sequence, at, actorId, actorName, actorRoles, action, entity, entityId, modelId, before, after, detail, reason } = link;
-  const text = canonicalize({ sequence, at, actorId, actorName, actorRoles, action, entity, entityId, modelId, before, after, detail, reason });
+  const text = canonicalize({
+    sequence,
+    at,
+    actorId,
+    actorName,
+    actorRoles,
+    action,
+    entity,
+    entityId,
+    modelId,
+    before,
+    after,
+    detail,
+    reason,
+  });
   return createHash('sha256').update(`${previous}\n${text}`).digest('hex');
 }

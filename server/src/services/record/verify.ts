@@ -55,9 +55,11 @@ async function walk(client: PoolClient, options: VerifyOptions): Promise<RecordV
       } else if (row.previousHash !== previous.hash) {
         report(row.sequence, 'reordered', `Entry ${row.sequence} does not follow entry ${previous.sequence}`);
       }
-      if (hashLink(row.previousHash, row) !== row.hash) report(row.sequence, 'altered', `Entry ${row.sequence} does not match its hash`);
+      if (hashLink(row.previousHash, row) !== row.hash)
+        report(row.sequence, 'altered', `Entry ${row.sequence} does not match its hash`);
       const noted = heads.get(row.sequence);
-      if (noted !== undefined && noted !== row.hash) report(row.sequence, 'altered', `Entry ${row.sequence} is not the one that was noted`);
+      if (noted !== undefined && noted !== row.hash)
+        report(row.sequence, 'altered', `Entry ${row.sequence} is not the one that was noted`);
       heads.delete(row.sequence);
       previous = { sequence: row.sequence, hash: row.hash };
     }
@@ -81,6 +83,8 @@ async function read(client: PoolClient, after: number, limit: number): Promise<R
 
 /** The last link; sequence 0 and 64 zeros while the record is empty. */
 export async function recordHead(pool: Pool): Promise<RecordHead> {
-  const { rows } = await pool.query<{ sequence: string; hash: string }>('SELECT sequence, hash FROM record ORDER BY sequence DESC LIMIT 1');
+  const { rows } = await pool.query<{ sequence: string; hash: string }>(
+    'SELECT sequence, hash FROM record ORDER BY sequence DESC LIMIT 1',
+  );
   return rows.length > 0 ? { sequence: Number(rows[0].sequence), hash: rows[0].hash } : { sequence: 0, hash: chainStart };
 }

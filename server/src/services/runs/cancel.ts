@@ -20,5 +20,12 @@ export async function cancelRun({ sequelize }: Context, tx: Transaction, actor: 
   if (!asked) return;
   await rows(sequelize, `SELECT pg_notify('tallystone_cancel', $1)`, [run.id], tx);
   await emitRunEvent(sequelize, tx, run.id);
-  await appendRecord(tx, { actor, action: 'run.cancelled', entity: 'run', entityId: run.id, modelId: run.modelId, detail: { kind: run.kind } });
+  await appendRecord(tx, {
+    actor,
+    action: 'run.cancelled',
+    entity: 'run',
+    entityId: run.id,
+    modelId: run.modelId,
+    detail: { kind: run.kind },
+  });
 }

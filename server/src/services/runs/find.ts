@@ -31,20 +31,34 @@ const select = `
     EXISTS (SELECT 1 FROM model_members m WHERE m.model_id = r.model_id AND m.person_id = $1) AS "isMember"
   FROM runs r JOIN people p ON p.id = r.person_id`;
 
-export async function findRun(sequelize: Sequelize, runId: string, readerId: string, tx: Transaction | null = null): Promise<RunRow | null> {
+export async function findRun(
+  sequelize: Sequelize,
+  runId: string,
+  readerId: string,
+  tx: Transaction | null = null,
+): Promise<RunRow | null> {
   const [run] = await rows<RunRow>(sequelize, `${select} WHERE r.id = $2`, [readerId, runId], tx);
   return run ?? null;
 }
 
 /** The same for a run that is known to be there. */
-export async function describeRun(sequelize: Sequelize, runId: string, readerId: string, tx: Transaction | null = null): Promise<RunRow> {
+export async function describeRun(
+  sequelize: Sequelize,
+  runId: string,
+  readerId: string,
+  tx: Transaction | null = null,
+): Promise<RunRow> {
   const run = await findRun(sequelize, runId, readerId, tx);
   if (!run) throw new Error(`Run ${runId} is gone`);
   return run;
 }
 
 /** Own runs, or those of a model, the latest 200 first. Whether the reader may see each is for the policy. */
-export function listRuns(sequelize: Sequelize, readerId: string, filter: { modelId?: string; active: boolean }): Promise<RunRow[]> {
+export function listRuns(
+  sequelize: Sequelize,
+  readerId: string,
+  filter: { modelId?: string; active: boolean },
+): Promise<RunRow[]> {
   const values: unknown[] = [readerId];
   const where = [filter.modelId ? `r.model_id = $${values.push(filter.modelId)}` : 'r.person_id = $1'];
   if (filter.active) where.push(`r.state IN ('queued', 'running', 'cancelling')`);

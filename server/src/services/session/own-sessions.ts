@@ -27,9 +27,20 @@ export function listOwnSessions({ sequelize }: Context, personId: string): Promi
 
 /** Ends one session of the person themselves; false when they have no such session. */
 export async function endOwnSession({ sequelize }: Context, tx: Transaction, actor: Actor, publicId: string): Promise<boolean> {
-  const ended = await rows(sequelize, 'DELETE FROM session WHERE person_id = $1 AND public_id = $2 RETURNING sid', [actor.id, publicId], tx);
+  const ended = await rows(
+    sequelize,
+    'DELETE FROM session WHERE person_id = $1 AND public_id = $2 RETURNING sid',
+    [actor.id, publicId],
+    tx,
+  );
   if (ended.length === 0) return false;
   await rows(sequelize, `SELECT pg_notify('tallystone_sessions', $1)`, [actor.id], tx);
-  await appendRecord(tx, { actor, action: 'session.ended', entity: 'session', entityId: publicId, detail: { sessionId: publicId } });
+  await appendRecord(tx, {
+    actor,
+    action: 'session.ended',
+    entity: 'session',
+    entityId: publicId,
+    detail: { sessionId: publicId },
+  });
   return true;
 }

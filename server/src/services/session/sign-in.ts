@@ -33,8 +33,14 @@ export async function signIn(context: Context, credentials: Credentials): Promis
   await forgive(context, attempt);
   return inTransaction(context.sequelize, async (tx) => {
     const actor: Actor = { id: person.id, name: person.name, email: person.email, roles: await rolesOf(person.id, tx) };
-    await Person.update({ lastSignInAt: fn('clock_timestamp') as unknown as Date }, { where: { id: person.id }, transaction: tx });
-    await appendRecord(tx, { actor, action: 'session.signed-in', entity: 'session', entityId: null, detail: { address: credentials.address } });
+    await Person.update({ lastSignInAt: fn('clock_timestamp') }, { where: { id: person.id }, transaction: tx });
+    await appendRecord(tx, {
+      actor,
+      action: 'session.signed-in',
+      entity: 'session',
+      entityId: null,
+      detail: { address: credentials.address },
+    });
     return actor;
   });
 }
@@ -47,7 +53,12 @@ async function demandPatience(context: Context, credentials: Credentials, person
   throw counted.problem;
 }
 
-async function recordFailure(context: Context, { address }: Credentials, person: Person | null, cause: 'wrong' | 'disabled' | 'throttled'): Promise<void> {
+async function recordFailure(
+  context: Context,
+  { address }: Credentials,
+  person: Person | null,
+  cause: 'wrong' | 'disabled' | 'throttled',
+): Promise<void> {
   await inTransaction(context.sequelize, (tx) =>
     appendRecord(tx, {
       actor: nobody(person ? 'someone at the door' : 'unknown'),

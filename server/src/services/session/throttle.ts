@@ -16,7 +16,9 @@ export interface Try {
   readonly address: string;
 }
 
-export type Throttled = { readonly refused: false; readonly attempt: Try } | { readonly refused: true; readonly first: boolean; readonly problem: Problem };
+export type Throttled =
+  | { readonly refused: false; readonly attempt: Try }
+  | { readonly refused: true; readonly first: boolean; readonly problem: Problem };
 
 /**
  * Counts a sign-in as failed before its password is looked at, and refuses when too many failed already: sends at the same moment cannot
@@ -41,7 +43,12 @@ export async function countTry({ sequelize, config }: Context, email: string, ad
     );
     const over = counts.both >= limits.both || counts.account >= limits.account || counts.address >= limits.address;
     if (over && counts.both !== limits.both) return { refused: true, first: false, problem: tooMany(counts.seconds) };
-    const [{ id }] = await rows<{ id: string }>(sequelize, 'INSERT INTO sign_in_failures (account, address) VALUES ($1, $2) RETURNING id', [account, address], tx);
+    const [{ id }] = await rows<{ id: string }>(
+      sequelize,
+      'INSERT INTO sign_in_failures (account, address) VALUES ($1, $2) RETURNING id',
+      [account, address],
+      tx,
+    );
     if (over) return { refused: true, first: true, problem: tooMany(counts.seconds) };
     return { refused: false, attempt: { id, account, address } };
   });
@@ -54,5 +61,7 @@ export async function forgive({ pool }: Context, attempt: Try): Promise<void> {
 
 function tooMany(seconds: number): Problem {
   const wait = Math.max(1, seconds);
-  return new Problem(429, problemCodes.tooMany, `Too many sign-ins failed. Try again in ${Math.ceil(wait / 60)} minutes.`, { headers: { 'Retry-After': String(wait) } });
+  return new Problem(429, problemCodes.tooMany, `Too many sign-ins failed. Try again in ${Math.ceil(wait / 60)} minutes.`, {
+    headers: { 'Retry-After': String(wait) },
+  });
 }
