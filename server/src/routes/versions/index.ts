@@ -67,7 +67,8 @@ export const versionRoutes: readonly Route[] = [
       await holdVersion(context.sequelize, tx, params.versionId);
       return findVersion(context.sequelize, params.versionId, tx);
     },
-    authorise: ({ person, subject, body }) => canActOnVersion(person, subject, body.act),
+    authorise: ({ person, subject }) => canReadVersion(person, subject),
+    permit: ({ person, subject, body }) => canActOnVersion(person, subject, body.act),
     act: async ({ context, tx, person, subject, body }) => {
       const version = await actOnVersion(context, tx, subject, person, body);
       return presentVersion(version, await gatesOf(context.sequelize, version, tx), person);
