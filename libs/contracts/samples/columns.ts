@@ -66,6 +66,7 @@ export const ColumnProfile = z
     /** The most frequent values, at most 50; `valuesComplete` when these are all. */
     mostFrequent: z.array(Counted),
     valuesComplete: z.boolean(),
+    /** Of the values that are neither missing nor suspected to be special codes. */
     numeric: z
       .object({
         smallest: z.number(),

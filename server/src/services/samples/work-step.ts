@@ -19,4 +19,4 @@ export async function sampleWorkStep(sequelize: Sequelize, modelId: string): Pro
   return { state: 'decision', caption: 'Confirm how the file is read' };
 }
 
-const thin = (value: number): string => String(value).replace(/\B(?=(\d{3})+(?!\d))/g, '\u2009');
+const thin = (value: number): string => String(value).replace(/\B(?=(\d{3})+(?!\d))/g, '\u202f');

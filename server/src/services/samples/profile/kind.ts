@@ -107,5 +107,5 @@ function listed(values: readonly Counted[], more: (text: string) => string = () 
   return shown.join(', ') + (sorted.length > 5 ? ` and ${thin(sorted.length - 5)} more` : '');
 }
 
-/** Whole numbers with a thin space between thousands. */
-export const thin = (value: number): string => String(value).replace(/\B(?=(\d{3})+(?!\d))/g, '\u2009');
+/** Whole numbers with a narrow no-break space between thousands. */
+export const thin = (value: number): string => String(value).replace(/\B(?=(\d{3})+(?!\d))/g, '\u202f');

@@ -42,6 +42,8 @@ export function profileColumn(
   const judged = personal ? { kind: 'categorical' as const, flags: [] } : judgeKind(all, reader);
   const numbers = judged.kind === 'numeric' ? numbersOf(all, reader.read) : null;
   const specialSuspects = numbers ? suspectSpecials(numbers) : [];
+  const suspected = new Set(specialSuspects.map(({ value }) => value));
+  const amounts = numbers?.filter(({ text }) => !suspected.has(text)) ?? null;
   const flags: ColumnFlag[] = [...shape(rows, missing, ranked, judged.kind), ...judged.flags];
   if (specialSuspects.length > 0) {
     const codes = specialSuspects.map(({ value, count }) => `${value.replace('-', '\u2212')} (${thin(count)})`).join(', ');
@@ -66,7 +68,7 @@ export function profileColumn(
     specialSuspects,
     mostFrequent: personal ? [] : ranked.slice(0, mostListed).map(({ text, count }) => ({ value: text, count })),
     valuesComplete: !personal && ranked.length <= mostListed,
-    numeric: numbers && numbers.length > 0 ? describeNumbers(numbers) : null,
+    numeric: amounts && amounts.length > 0 ? describeNumbers(amounts) : null,
     date: judged.kind === 'date' ? describeDates(all) : null,
     text: judged.kind === 'categorical' && all.length > 0 && !personal ? describeTexts(all) : null,
     flags,

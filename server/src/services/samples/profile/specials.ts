@@ -38,6 +38,16 @@ export function suspectSpecials(numbers: readonly CountedNumber[]): ColumnProfil
   };
   consider('smallest');
   consider('largest');
+  // Written in nines and as frequent as no amount is, wherever it lies among them.
+  for (const { value, text, count } of numbers) {
+    const known = suspects.some((suspect) => suspect.value === text);
+    if (known || numbers.length < 50 || value >= 0 || !/^-9{1,}[6-9](\.0+)?$/.test(text) || count < 0.02 * rows) continue;
+    suspects.push({
+      value: text,
+      count,
+      reason: `${thin(count)} times, written in nines and far more frequent than any amount beside it.`,
+    });
+  }
   return suspects;
 }
 

@@ -23,6 +23,7 @@ interface Row {
 @Component({
   selector: 'ts-columns-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
+  host: { class: 'ts-page' },
   imports: [
     RouterLink,
     MatButtonModule,
@@ -69,12 +70,7 @@ interface Row {
           empty="The file has not been read yet."
         >
           <ng-template tsCell="column" [tsCellRows]="rows()" let-row>
-            <button
-              class="name"
-              type="button"
-              [attr.aria-pressed]="isSelected(row)"
-              (click)="choose(row.profile.column)"
-            >
+            <button class="name" type="button" [attr.aria-pressed]="isSelected(row)" (click)="choose(row.profile.column)">
               {{ row.profile.column }}
             </button>
           </ng-template>

@@ -31,6 +31,7 @@ import { WaterfallFigure } from '../ui/waterfall-figure';
 @Component({
   selector: 'ts-definition-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
+  host: { class: 'ts-page' },
   imports: [
     RouterLink,
     MatButtonModule,

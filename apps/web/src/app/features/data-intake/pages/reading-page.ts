@@ -22,6 +22,7 @@ import { SampleSteps } from '../ui/sample-steps';
 @Component({
   selector: 'ts-reading-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
+  host: { class: 'ts-page' },
   imports: [MatButtonModule, PageHeader, PreviewTable, ProblemList, ReadingForm, RunProgress, SampleSteps],
   template: `
     <div class="ts-stack">

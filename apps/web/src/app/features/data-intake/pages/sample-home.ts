@@ -7,6 +7,7 @@ import { oneSample } from '../data/samples';
 @Component({
   selector: 'ts-sample-home',
   changeDetection: ChangeDetectionStrategy.OnPush,
+  host: { class: 'ts-page' },
   imports: [ProblemList],
   template: `<ts-problems [error]="sample.error()" next="Go back to the list of samples." />`,
 })

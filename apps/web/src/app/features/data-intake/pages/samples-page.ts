@@ -22,6 +22,7 @@ import { UploadPanel } from '../ui/upload-panel';
 @Component({
   selector: 'ts-samples-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
+  host: { class: 'ts-page' },
   imports: [MatButtonModule, CellTemplate, DenseTable, PageHeader, ProblemList, RunProgress, StatusMark, UploadPanel],
   template: `
     <div class="ts-stack">

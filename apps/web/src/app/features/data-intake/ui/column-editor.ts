@@ -6,7 +6,8 @@ import { MatInputModule } from '@angular/material/input';
 import { MatSelectModule } from '@angular/material/select';
 import type { ColumnProfile, ColumnRole } from '@tallystone/contracts/samples/columns';
 import type { DefinedColumn, SpecialCode } from '@tallystone/contracts/samples/definition';
-import { count, significant } from '../../../ui/numbers';
+import { count } from '../../../ui/numbers';
+import { plain } from './findings';
 import { ColumnFigure } from './column-figure';
 
 const roles: readonly ColumnRole[] = [
@@ -187,10 +188,10 @@ export class ColumnEditor {
 
   protected readonly roles = roles;
   protected readonly names = { stop: 'Not used:', look: 'Look:', note: 'Note:' } as const;
-  protected readonly write = (value: number): string => significant(value, 4);
+  protected readonly write = plain;
   protected readonly quantiles = computed(() => {
     const list = this.profile().numeric?.quantiles ?? [];
-    return [0.05, 0.5, 0.95].map((at) => significant(list.find((quantile) => quantile.share === at)?.value, 4)).join(', ');
+    return [0.05, 0.5, 0.95].map((at) => plain(list.find((quantile) => quantile.share === at)?.value ?? NaN)).join(', ');
   });
   protected readonly suspects = computed(() => {
     const known = new Set((this.column()?.special ?? []).flatMap(({ values }) => values.map(String)));

@@ -6,7 +6,8 @@ import { AxisDirective } from '../../../ui/axis';
 import { Column } from '../../../ui/column';
 import { ElementWidth } from '../../../ui/element-width';
 import { FigureFrame, FigurePoint } from '../../../ui/figure-frame';
-import { count, plural, share, significant } from '../../../ui/numbers';
+import { count, plural, share } from '../../../ui/numbers';
+import { plain } from './findings';
 
 interface Bar {
   readonly label: string;
@@ -87,7 +88,7 @@ export class ColumnFigure {
     if (numeric) {
       const { edges, counts } = numeric.histogram;
       return counts.map((value, k) => ({
-        label: `${significant(edges[k], 4)} to ${significant(edges[k + 1], 4)}`,
+        label: `${plain(edges[k])} to ${plain(edges[k + 1])}`,
         count: value,
         from: edges[k],
         to: edges[k + 1],
@@ -107,7 +108,7 @@ export class ColumnFigure {
   protected readonly axis = computed(() =>
     axisBottom<number>(this.x())
       .ticks(Math.max(2, Math.floor(this.width() / 110)))
-      .tickFormat((value) => significant(value, 4)),
+      .tickFormat((value) => plain(value)),
   );
   protected readonly texts = computed(() => scaleLinear().domain([0, this.largest()]).range([0, this.width()]));
   protected readonly textHeight = computed(() => Math.max(30, this.bars().length * 26 + 4));
@@ -135,7 +136,9 @@ export class ColumnFigure {
     const absent = missing > 0 ? `, missing in ${share(missing / rows)}` : ', never missing';
     if (numeric) {
       const median = numeric.quantiles.find((quantile) => quantile.share === 0.5)?.value;
-      return `Half of the values lie below ${significant(median, 4)}${absent}.`;
+      const special = this.profile().specialSuspects.reduce((sum, suspect) => sum + suspect.count, 0);
+      const codes = special > 0 ? `; ${plural(special, 'row')} that may hold special codes are left out here` : '';
+      return `Half of the values lie below ${plain(median ?? NaN)}${absent}${codes}.`;
     }
     if (date) return `${plural(date.months.length, 'month')} from ${date.first} to ${date.last}${absent}.`;
     if (hashed) return `${plural(distinct, 'value')}, kept as keyed hashes${absent}.`;

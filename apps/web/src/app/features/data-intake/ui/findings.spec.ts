@@ -1,6 +1,6 @@
 import type { DefinitionCounts } from '@tallystone/contracts/samples/definition';
 import { describe, expect, it } from 'vitest';
-import { badRateOut, countsFinding, samplesFinding } from './findings';
+import { badRateOut, countsFinding, plain, samplesFinding } from './findings';
 import { conditionOf, testWith, valueOf } from './exclusion-test';
 
 const counts: DefinitionCounts = {
@@ -24,6 +24,17 @@ describe('findings of the sample pages', () => {
   it('give a bad rate only where there is an outcome', () => {
     expect(badRateOut(counts.waterfall[1])).toBe(0.25);
     expect(badRateOut(counts.waterfall[0])).toBeNull();
+  });
+  it('write amounts without empty digits', () => {
+    expect([0.5, 95, 1250, -999, 4.1, 12345.678, 0].map(plain)).toEqual([
+      '0.5',
+      '95',
+      '1\u202f250',
+      '\u2212999',
+      '4.1',
+      '12\u202f346',
+      '0',
+    ]);
   });
   it('begin with what is to be done', () => {
     expect(samplesFinding({ samples: [], uploads: [], abilities: ['add'] })).toBe(

@@ -30,11 +30,21 @@ export function readingFinding(preview: Preview): string {
   return `${part} have ${columns} each, and nothing speaks against these choices.`;
 }
 
+/** Four significant digits and no zeros after them: 0.5, 95, 1 250. */
+export function plain(value: number): string {
+  const text = significant(value, 4);
+  return text.includes('.') && !text.includes('e')
+    ? text.replace(/\.?0+$/, '')
+    : Number.isInteger(value) && Math.abs(value) < 1e9
+      ? count(value)
+      : text;
+}
+
 /** "18 to 77, median 41": what a quality table has room for. */
 export function rangeOf(profile: ColumnProfile): string {
   const { numeric, date, text } = profile;
   if (numeric) {
-    const write = (value: number): string => (numeric.integers ? count(value) : significant(value, 4));
+    const write = plain;
     return `${write(numeric.smallest)} to ${write(numeric.largest)}`;
   }
   if (date) return `${date.first} to ${date.last}`;

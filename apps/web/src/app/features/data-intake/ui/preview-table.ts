@@ -65,7 +65,11 @@ export class PreviewTable {
         unit: columns[position]?.kind ?? '',
         kind: columns[position]?.kind === 'numeric' ? 'number' : 'text',
         value: (row) => row.cells[position] ?? null,
-        format: (row) => row.cells[position] ?? '',
+        // A date stays in one piece.
+        format: (row) =>
+          columns[position]?.kind === 'date'
+            ? (row.cells[position] ?? '').replaceAll('-', '\u2011')
+            : (row.cells[position] ?? ''),
         width: 24,
       })),
     ];
