@@ -283,7 +283,7 @@ function validationOf(version: FoundVersion): DocumentInput['validation'] {
     opinion: concluded?.statement ?? null,
     conclusion: concluded?.conclusion ?? null,
     concludedAt: concluded?.at ?? null,
-    findings: [],
+    findings: null,
   };
 }
 
