@@ -13,6 +13,7 @@ import { NewPassword, newPasswordControl } from '../../../ui/new-password';
 import { MomentPipe } from '../../../ui/number-pipes';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
+import { browserName } from '../ui/browser-name';
 import { OwnAccount, type OwnSession, ownSessions } from '../data/own-account';
 import { showInvalid } from '../../../ui/show-invalid';
 
@@ -76,6 +77,7 @@ export class AccountPage {
   protected readonly ending = new Task();
   protected readonly changing = new Task();
   protected readonly changed = signal(false);
+  protected readonly browserName = browserName;
   protected readonly form = inject(NonNullableFormBuilder).group({
     current: ['', Validators.required],
     next: newPasswordControl(),

@@ -4,6 +4,7 @@ import { MatButtonModule } from '@angular/material/button';
 import { MatFormFieldModule } from '@angular/material/form-field';
 import { MatInputModule } from '@angular/material/input';
 import { Router, RouterLink } from '@angular/router';
+import { Problem, asProblem } from '../../../core/http/problem';
 import { Session } from '../../../core/session';
 import { Task } from '../../../core/task';
 import { ProblemList } from '../../../ui/problem-list';
@@ -81,7 +82,8 @@ export class SignInPage {
         await this.session.signIn(email, password);
       } catch (error) {
         this.form.controls.password.reset();
-        throw error;
+        const { status, code, detail, requestId } = asProblem(error);
+        throw status === 401 ? new Problem(status, code, 'Not signed in', detail, [], requestId) : error;
       }
       await this.router.navigateByUrl(this.target());
     });
