@@ -129,7 +129,7 @@ export async function gatherDocument(context: Context, versionId: string, person
       role: entry.role,
       at: entry.at,
       statement: [entry.conclusion, entry.statement].filter(Boolean).join('. ') || null,
-      sequence: history.find((line) => line.entityId === version.id && Math.abs(Date.parse(line.at) - Date.parse(entry.at)) < 5000)?.sequence ?? null,
+      sequence: recorded(history, version, entry),
     })),
     conditions: (concluded?.conditions ?? []).map((text) => ({ text, kind: 'condition of the validator', owner: model.owner, due: null, discharged: null })),
     texts,
@@ -204,6 +204,22 @@ export async function gatherDocument(context: Context, versionId: string, person
     history: history.map(({ sequence, at, by, act, reason }) => ({ sequence, at, by, act, reason })),
     recordHead: { sequence: head.sequence, hash: head.hash },
   };
+}
+
+const recordActions = {
+  freeze: 'version.frozen',
+  submit: 'version.submitted',
+  withdraw: 'version.withdrawn',
+  start: 'version.validation-started',
+  conclude: 'version.concluded',
+  accept: 'version.documentation-accepted',
+  return: 'version.documentation-returned',
+} as const;
+
+/** The place of an act in the record: acts of one kind on a version stand there in the order they were done. */
+function recorded(history: readonly HistoryLine[], version: FoundVersion, entry: FoundVersion['acts'][number]): number | null {
+  const place = version.acts.filter(({ act }) => act === entry.act).indexOf(entry);
+  return history.filter((line) => line.entityId === version.id && line.act === recordActions[entry.act])[place]?.sequence ?? null;
 }
 
 const interval = (lower: number | null, upper: number | null): { lower: number; upper: number } | null => (lower === null || upper === null ? null : { lower, upper });
