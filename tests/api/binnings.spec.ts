@@ -12,6 +12,7 @@ import {
   moveCut,
   moveMissing,
   readBench,
+  type Bins as BenchBins,
   type EditOf,
 } from '@tallystone/numeric/bench';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
@@ -77,12 +78,12 @@ describe('automatic classing', () => {
     });
     expect(binning.barred).toEqual([{ column: 'gender', reason: expect.stringContaining('Protected') as string }]);
     const { characteristics, finding } = await characteristicsOf(modeller, binning.id);
-    expect(characteristics.map(({ column, kind, included }) => [column, kind, included])).toEqual([
-      ['age', 'numeric', true],
-      ['utilisation', 'numeric', true],
-      ['home', 'categorical', true],
-      ['region', 'categorical', true],
-      ['branch_code', 'categorical', false],
+    expect(characteristics.map(({ column, kind, included, trend }) => [column, kind, included, trend])).toEqual([
+      ['age', 'numeric', true, 'rising'],
+      ['utilisation', 'numeric', true, 'falling'],
+      ['home', 'categorical', true, 'none'],
+      ['region', 'categorical', true, 'none'],
+      ['branch_code', 'categorical', false, 'none'],
     ]);
     expect(characteristics[4].leftOutReason).toContain('one bin');
     expect(characteristics[1].reading).not.toBe('none');
@@ -115,7 +116,11 @@ describe('automatic classing', () => {
       });
       if ('problems' in parsed) throw new Error(JSON.stringify(parsed.problems));
       expect(parsed.specification.characteristics[0]).toEqual(detail.definition);
-      expect(detail.definition.classing).toEqual({ made: 'automatic', ...binning.constraints });
+      expect(detail.definition.classing).toEqual({
+        made: 'automatic',
+        ...binning.constraints,
+        trend: column === 'age' ? 'rising' : 'any',
+      });
     }
   });
 

@@ -44,6 +44,15 @@ export const Constraints = z.strictObject({
 });
 export type Constraints = z.infer<typeof Constraints>;
 
+/**
+ * Constraints as they are asked for. "monotone" is rising or falling, whichever tells more: each characteristic then has the one it was
+ * classed under, so that the specification names it.
+ */
+export const AskedConstraints = Constraints.extend({
+  trend: z.enum(['monotone', 'any', 'rising', 'falling', 'one-peak', 'one-valley']).default('monotone'),
+});
+export type AskedConstraints = z.infer<typeof AskedConstraints>;
+
 /** Goods and bads weighted, rows counted: one entry per slot (see Fine). Only rows with a good or bad outcome. */
 export const SlotCounts = z.object({ rows: z.array(finite), goods: z.array(finite), bads: z.array(finite) });
 export type SlotCounts = z.infer<typeof SlotCounts>;

@@ -1,13 +1,13 @@
 import { z } from 'zod';
 import { recordEvent } from '../record/event';
-import { Bins, Constraints } from './bins';
+import { AskedConstraints, Bins, Constraints } from './bins';
 import { EditKind } from './edits';
 
 const column = z.string();
 
 export const binningEvents = [
   recordEvent('binning.started', 'binning', {
-    after: z.strictObject({ name: z.string(), definitionId: z.uuid(), constraints: Constraints }),
+    after: z.strictObject({ name: z.string(), definitionId: z.uuid(), constraints: AskedConstraints }),
   }),
   recordEvent('binning.classed', 'binning', { after: z.strictObject({ characteristics: z.int() }) }),
   recordEvent('binning.edited', 'binning-characteristic', {

@@ -2,7 +2,7 @@ import { z } from 'zod';
 import type { BinnedCharacteristic } from '../specification/types';
 import { OutOfTimeState } from '../out-of-time/schema';
 import { binningAbilities, binningListAbilities } from './abilities';
-import { Bins, Constraints, Fine } from './bins';
+import { AskedConstraints, Bins, Constraints, Fine } from './bins';
 import { Edit, SentEdit } from './edits';
 
 const finite = z.number();
@@ -16,7 +16,7 @@ const name = z.string().trim().min(1, 'Give the binning a name').max(120);
 export const NewBinning = z.strictObject({
   definitionId: z.uuid(),
   name,
-  constraints: Constraints.default(() => Constraints.parse({})),
+  constraints: AskedConstraints.default(() => AskedConstraints.parse({})),
 });
 export type NewBinning = z.input<typeof NewBinning>;
 
@@ -48,7 +48,7 @@ export const BinningList = z
 export type BinningList = z.infer<typeof BinningList>;
 
 export const Binning = BinningSummary.extend({
-  constraints: Constraints,
+  constraints: AskedConstraints,
   outOfTime: OutOfTimeState,
   /** Columns with the role of a characteristic that no binning takes, with the reason. */
   barred: z.array(z.object({ column: z.string(), reason: z.string() })),
@@ -153,7 +153,7 @@ const chosen = z
 export const Reclass = z.strictObject({
   characteristics: chosen,
   /** Fine classes stay as they are. */
-  constraints: Constraints.omit({ fineClasses: true }),
+  constraints: AskedConstraints.omit({ fineClasses: true }),
   reason: z.string().trim().max(1000).default(''),
 });
 export type Reclass = z.input<typeof Reclass>;

@@ -1,28 +1,47 @@
-import type { Bins, Constraints, Fine, SlotCounts } from '@tallystone/contracts/binnings/bins';
+import type { AskedConstraints, Bins, Constraints, Fine, SlotCounts } from '@tallystone/contracts/binnings/bins';
 import type { Warning } from '@tallystone/contracts/binnings/schema';
 import { benchWarnings, classCount, readBench, readingOfIv } from '@tallystone/numeric/bench';
 import { classCategories } from '@tallystone/numeric/binning/categories';
 import { classNumeric } from '@tallystone/numeric/binning/classing';
 
-/** Bins of one characteristic under constraints, from its fine classes; special codes and missing in bins of their own. */
-export function classFine(fine: Fine, constraints: Constraints): Bins {
+export interface ClassedBins {
+  readonly bins: Bins;
+  /** What was asked for, with the trend it came to. */
+  readonly constraints: Constraints;
+}
+
+/**
+ * Bins of one characteristic under constraints, from its fine classes; special codes and missing in bins of their own. "monotone" is classed
+ * both ways and takes the one with the larger information value.
+ */
+export function classFine(fine: Fine, asked: AskedConstraints): ClassedBins {
   const own = { special: fine.special.map(() => 'own' as const), missing: 'own' as const };
   const classes = classCount(fine);
   const { rows, goods, bads } = fine.development;
   const totals = { goods: sum(goods), bads: sum(bads) };
-  if (fine.kind === 'numeric') {
-    const known = { rows: rows.slice(0, classes), goods: goods.slice(0, classes), bads: bads.slice(0, classes) };
-    const { cuts } = classNumeric(known, constraints, totals);
-    return { kind: 'numeric', edges: cuts.map((cut) => fine.edges[cut - 1]), ...own };
+  if (fine.kind === 'categorical') {
+    // Groups are ordered by rate: a trend over them has no meaning of its own.
+    const constraints: Constraints = { ...asked, trend: 'any' };
+    const categories = fine.categories.map((_, slot) => ({ rows: rows[slot], goods: goods[slot], bads: bads[slot] }));
+    const { groups } = classCategories(categories, constraints, totals);
+    return {
+      constraints,
+      bins: {
+        kind: 'categorical',
+        groups: groups.map((group) => group.map((slot) => fine.categories[slot])),
+        ...own,
+        unseen: 'neutral',
+      },
+    };
   }
-  const categories = fine.categories.map((_, slot) => ({ rows: rows[slot], goods: goods[slot], bads: bads[slot] }));
-  const { groups } = classCategories(categories, constraints, totals);
-  return {
-    kind: 'categorical',
-    groups: groups.map((group) => group.map((slot) => fine.categories[slot])),
-    ...own,
-    unseen: 'neutral',
-  };
+  const known = { rows: rows.slice(0, classes), goods: goods.slice(0, classes), bads: bads.slice(0, classes) };
+  const trends: Constraints['trend'][] = asked.trend === 'monotone' ? ['rising', 'falling'] : [asked.trend];
+  const tried = trends.map((trend) => {
+    const constraints: Constraints = { ...asked, trend };
+    return { constraints, ...classNumeric(known, constraints, totals) };
+  });
+  const best = tried.reduce((a, b) => (b.informationValue > a.informationValue ? b : a));
+  return { constraints: best.constraints, bins: { kind: 'numeric', edges: best.cuts.map((cut) => fine.edges[cut - 1]), ...own } };
 }
 
 export interface Summarised {

@@ -1,4 +1,4 @@
-import type { Bins, Constraints, Fine, SlotCounts } from '@tallystone/contracts/binnings/bins';
+import type { AskedConstraints, Bins, Constraints, Fine, SlotCounts } from '@tallystone/contracts/binnings/bins';
 import type { BinnedCharacteristic, DataReading } from '@tallystone/contracts/specification/types';
 import { ReplayError } from '../replay/problems';
 import type { SourceColumn } from '../replay/source';
@@ -20,12 +20,13 @@ export interface ClassColumn {
   readonly data: DataReading;
   /** Arrays over shared memory are not copied from thread to thread. */
   readonly counted: CountedRows;
-  readonly constraints: Constraints;
+  readonly constraints: AskedConstraints;
 }
 
 export interface ClassedColumn extends Summarised {
   readonly definition: BinnedCharacteristic;
   readonly automatic: Bins;
+  readonly constraints: Constraints;
   readonly fine: Fine;
   readonly outOfTime: SlotCounts;
 }
@@ -41,7 +42,7 @@ export const classColumn: Task<ClassColumn, ClassedColumn | { readonly unusable:
   column,
   data,
   counted,
-  constraints,
+  constraints: asked,
 }) => {
   try {
     const { fine, outOfTime } = fineClasses(
@@ -49,12 +50,12 @@ export const classColumn: Task<ClassColumn, ClassedColumn | { readonly unusable:
       sourceOfOne(defined, column, counted.rows),
       data,
       counted,
-      constraints.fineClasses,
+      asked.fineClasses,
     );
     if (fine.kind === 'categorical' && fine.categories.length === 0) return { unusable: 'No development row has a value.' };
-    const automatic = classFine(fine, constraints);
+    const { bins: automatic, constraints } = classFine(fine, asked);
     const definition = withBins(fineEntry(defined, fine.edges, fine.categories), automatic, automaticClassing(constraints));
-    return { definition, automatic, fine, outOfTime, ...summarise(fine, outOfTime, automatic, constraints) };
+    return { definition, automatic, constraints, fine, outOfTime, ...summarise(fine, outOfTime, automatic, constraints) };
   } catch (error) {
     if (error instanceof TooManyCategories || error instanceof ReplayError) return { unusable: error.message };
     throw error;
@@ -77,17 +78,21 @@ export const splitColumn: Task<SplitColumn, { readonly fine: Fine; readonly outO
 }) => splitFineClass(defined, sourceOfOne(defined, column, counted.rows), data, counted, fine, edge);
 
 export interface ReclassFine {
-  readonly characteristics: readonly { readonly fine: Fine; readonly outOfTime: SlotCounts; readonly constraints: Constraints }[];
+  readonly characteristics: readonly {
+    readonly fine: Fine;
+    readonly outOfTime: SlotCounts;
+    readonly constraints: AskedConstraints;
+  }[];
 }
 
 /** Classes characteristics anew from fine classes that are already counted. */
-export const reclassFine: Task<ReclassFine, ({ readonly automatic: Bins } & Summarised)[]> = (
+export const reclassFine: Task<ReclassFine, ({ readonly automatic: Bins; readonly constraints: Constraints } & Summarised)[]> = (
   { characteristics },
   { cancelled, progress },
 ) =>
-  characteristics.map(({ fine, outOfTime, constraints }, index) => {
+  characteristics.map(({ fine, outOfTime, constraints: asked }, index) => {
     if (cancelled()) throw new Error('Cancelled');
     progress('Classing', index / characteristics.length);
-    const automatic = classFine(fine, constraints);
-    return { automatic, ...summarise(fine, outOfTime, automatic, constraints) };
+    const { bins: automatic, constraints } = classFine(fine, asked);
+    return { automatic, constraints, ...summarise(fine, outOfTime, automatic, constraints) };
   });

@@ -1,5 +1,5 @@
 import { randomUUID } from 'node:crypto';
-import { Constraints } from '@tallystone/contracts/binnings/bins';
+import { AskedConstraints } from '@tallystone/contracts/binnings/bins';
 import type { SentEdit } from '@tallystone/contracts/binnings/edits';
 import { edgeNear, moveCut } from '@tallystone/numeric/bench';
 import { binsOfEntry } from '../classing/definition';
@@ -39,7 +39,7 @@ export async function ensureDemoBinning(
           person: modeller,
           definitionId,
           name,
-          constraints: Constraints.parse({}),
+          constraints: AskedConstraints.parse({}),
         });
         if (!started.runId) throw new Error('The demo binning has no run');
         return { id: started.runId };

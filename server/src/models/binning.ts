@@ -1,4 +1,4 @@
-import type { Bins, Constraints, Fine, SlotCounts } from '@tallystone/contracts/binnings/bins';
+import type { AskedConstraints, Bins, Constraints, Fine, SlotCounts } from '@tallystone/contracts/binnings/bins';
 import type { EditKind, EditReason } from '@tallystone/contracts/binnings/edits';
 import type { Warning, ivReadings, trends } from '@tallystone/contracts/binnings/schema';
 import type { BinnedCharacteristic } from '@tallystone/contracts/specification/types';
@@ -17,7 +17,7 @@ export class Binning extends Model<InferAttributes<Binning>, InferCreationAttrib
   declare definitionId: string;
   declare number: number;
   declare name: string;
-  declare constraints: Constraints;
+  declare constraints: AskedConstraints;
   declare barred: { column: string; reason: string }[];
   declare runId: CreationOptional<string | null>;
   declare readyAt: CreationOptional<Date | null>;

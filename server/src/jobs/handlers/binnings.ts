@@ -25,7 +25,7 @@ export const classBinning = handle(classBinningJob, {
     );
     await finish(async (tx) => {
       await BinningCharacteristic.bulkCreate(
-        classed.map(({ column, kind, position, definition: entry, automatic, fine, outOfTime, summary, outOfTimeWarnings }) => {
+        classed.map(({ column, kind, position, definition: entry, automatic, constraints, fine, outOfTime, summary, outOfTimeWarnings }) => {
           const oneBin = summary.warnings.find(({ code }) => code === 'one-bin');
           return {
             binningId,
@@ -34,7 +34,7 @@ export const classBinning = handle(classBinningJob, {
             kind,
             definition: entry,
             automatic,
-            constraints: binning.constraints,
+            constraints,
             fine,
             outOfTime,
             summary,

@@ -1,5 +1,5 @@
 import { problemCodes } from '@tallystone/contracts/problems/codes';
-import type { Constraints } from '@tallystone/contracts/binnings/bins';
+import type { AskedConstraints } from '@tallystone/contracts/binnings/bins';
 import type { Sequelize, Transaction } from 'sequelize';
 import { automaticClassing, binsOfEntry, withBins } from '../../classing/definition';
 import { BinningCharacteristic, BinningEdit } from '../../models/binning';
@@ -55,7 +55,7 @@ export async function reclassCharacteristics(
   tx: Transaction,
   person: Actor,
   binning: FoundBinning,
-  asked: { characteristics: readonly Chosen[]; constraints: Omit<Constraints, 'fineClasses'>; reason: string },
+  asked: { characteristics: readonly Chosen[]; constraints: Omit<AskedConstraints, 'fineClasses'>; reason: string },
 ): Promise<void> {
   const found = await lockChosen(sequelize, tx, binning, asked.characteristics);
   const edits = found.reduce((sum, one) => sum + one.edits, 0);
@@ -66,17 +66,17 @@ export async function reclassCharacteristics(
       `${edits} manual ${edits === 1 ? 'edit' : 'edits'} would no longer be in effect. Say why.`,
     );
   }
-  const constraints = found.map((one) => ({ ...asked.constraints, fineClasses: one.constraints.fineClasses }));
+  const asking = found.map((one) => ({ ...asked.constraints, fineClasses: one.constraints.fineClasses }));
   const classed = await runInThread('binning.reclass', {
-    characteristics: found.map(({ fine, outOfTime }, index) => ({ fine, outOfTime, constraints: constraints[index] })),
+    characteristics: found.map(({ fine, outOfTime }, index) => ({ fine, outOfTime, constraints: asking[index] })),
   });
   for (const [index, one] of found.entries()) {
-    const { automatic, summary, outOfTimeWarnings } = classed[index];
+    const { automatic, constraints, summary, outOfTimeWarnings } = classed[index];
     await BinningCharacteristic.update(
       {
         automatic,
-        constraints: constraints[index],
-        definition: withBins(one.definition, automatic, automaticClassing(constraints[index])),
+        constraints,
+        definition: withBins(one.definition, automatic, automaticClassing(constraints)),
         summary,
         outOfTimeWarnings,
         revision: one.revision + 1,
@@ -96,7 +96,7 @@ export async function reclassCharacteristics(
       modelId: binning.modelId,
       before: binsOfEntry(one.definition),
       after: classed[index].automatic,
-      detail: { column: one.column, constraints: constraints[index], editsDropped: one.edits },
+      detail: { column: one.column, constraints: classed[index].constraints, editsDropped: one.edits },
       ...(asked.reason === '' ? {} : { reason: asked.reason }),
     });
   }

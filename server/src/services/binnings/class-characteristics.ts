@@ -1,4 +1,4 @@
-import type { Constraints } from '@tallystone/contracts/binnings/bins';
+import type { AskedConstraints } from '@tallystone/contracts/binnings/bins';
 import type { DataReading } from '@tallystone/contracts/specification/types';
 import type { Sequelize } from 'sequelize';
 import type { ClassedColumn } from '../../classing/class-column';
@@ -47,7 +47,7 @@ export async function classCharacteristics(
     data: DataReading;
     counted: CountedRows;
     columns: readonly ColumnToClass[];
-    constraints: Constraints;
+    constraints: AskedConstraints;
   },
   control: { signal: AbortSignal; onDone: (done: number) => void },
 ): Promise<Classed> {

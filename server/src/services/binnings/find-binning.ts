@@ -1,4 +1,4 @@
-import type { Constraints } from '@tallystone/contracts/binnings/bins';
+import type { AskedConstraints } from '@tallystone/contracts/binnings/bins';
 import type { BinningState } from '@tallystone/contracts/binnings/schema';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
@@ -14,7 +14,7 @@ export interface FoundBinning extends BinningStanding {
   readonly name: string;
   readonly state: BinningState;
   readonly runId: string | null;
-  readonly constraints: Constraints;
+  readonly constraints: AskedConstraints;
   readonly barred: { column: string; reason: string }[];
   readonly sample: string;
   readonly problem: string | null;

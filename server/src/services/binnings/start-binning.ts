@@ -1,5 +1,5 @@
 import { randomUUID } from 'node:crypto';
-import type { Constraints } from '@tallystone/contracts/binnings/bins';
+import type { AskedConstraints } from '@tallystone/contracts/binnings/bins';
 import type { Transaction } from 'sequelize';
 import type { Context } from '../../context';
 import { rows } from '../../database/sql';
@@ -27,7 +27,7 @@ export async function startBinning(
     person: Actor;
     definitionId: string;
     name: string;
-    constraints: Constraints;
+    constraints: AskedConstraints;
     requestId?: string;
   },
 ): Promise<FoundBinning> {

@@ -1,6 +1,6 @@
 import { HttpClient, type HttpResourceRef, httpResource } from '@angular/common/http';
 import { Injectable, inject } from '@angular/core';
-import type { Constraints } from '@tallystone/contracts/binnings/bins';
+import type { AskedConstraints } from '@tallystone/contracts/binnings/bins';
 import type { EditHistory } from '@tallystone/contracts/binnings/schema';
 import type {
   Binning,
@@ -27,7 +27,7 @@ export type {
   CharacteristicDetail,
   CharacteristicList,
   CharacteristicSummary,
-  Constraints,
+  AskedConstraints,
   EditHistory,
 };
 

@@ -3,11 +3,12 @@ import { FormControl, FormGroup, ReactiveFormsModule, Validators, type Validator
 import { MatFormFieldModule } from '@angular/material/form-field';
 import { MatInputModule } from '@angular/material/input';
 import { MatSelectModule } from '@angular/material/select';
-import type { Constraints } from '@tallystone/contracts/binnings/bins';
+import type { AskedConstraints } from '@tallystone/contracts/binnings/bins';
 
-type Trend = Constraints['trend'];
+type Trend = AskedConstraints['trend'];
 
 export const trendChoices: readonly { readonly value: Trend; readonly label: string }[] = [
+  { value: 'monotone', label: 'Monotone, whichever way tells more' },
   { value: 'any', label: 'Any' },
   { value: 'rising', label: 'WOE rises: risk falls along the values' },
   { value: 'falling', label: 'WOE falls: risk rises along the values' },
@@ -15,21 +16,21 @@ export const trendChoices: readonly { readonly value: Trend; readonly label: str
   { value: 'one-valley', label: 'One valley: risk rises, then falls' },
 ];
 
-export const usualConstraints: Constraints = {
+export const usualConstraints: AskedConstraints = {
   fineClasses: 100,
   smallestShare: 0.05,
   smallestGoods: 20,
   smallestBads: 20,
   mostBins: 8,
   smallestDifference: 0.05,
-  trend: 'any',
+  trend: 'monotone',
 };
 
 const number = (value: number, ...validators: ValidatorFn[]): FormControl<number> =>
   new FormControl(value, { nonNullable: true, validators: [Validators.required, ...validators] });
 
 /** The share is typed in per cent. */
-export function constraintsForm(from: Constraints = usualConstraints) {
+export function constraintsForm(from: AskedConstraints = usualConstraints) {
   return new FormGroup({
     fineClasses: number(from.fineClasses, Validators.min(2), Validators.max(200)),
     smallestShare: number(Math.round(from.smallestShare * 1e6) / 1e4, Validators.min(0), Validators.max(50)),
@@ -42,7 +43,7 @@ export function constraintsForm(from: Constraints = usualConstraints) {
 }
 export type ConstraintsForm = ReturnType<typeof constraintsForm>;
 
-export const constraintsOf = (form: ConstraintsForm): Constraints => {
+export const constraintsOf = (form: ConstraintsForm): AskedConstraints => {
   const values = form.getRawValue();
   return { ...values, smallestShare: values.smallestShare / 100 };
 };

@@ -4,19 +4,19 @@ import { MatButtonModule } from '@angular/material/button';
 import { MAT_DIALOG_DATA, MatDialogModule, MatDialogRef } from '@angular/material/dialog';
 import { MatFormFieldModule } from '@angular/material/form-field';
 import { MatInputModule } from '@angular/material/input';
-import type { Constraints } from '@tallystone/contracts/binnings/bins';
+import type { AskedConstraints } from '@tallystone/contracts/binnings/bins';
 import { plural } from '../../../ui/numbers';
 import { ConstraintsFields, constraintsForm, constraintsOf } from './constraints-form';
 
 export interface ReclassQuestion {
   readonly columns: readonly string[];
-  readonly constraints: Constraints;
+  readonly constraints: AskedConstraints;
   /** Manual edits that would no longer be in effect. */
   readonly edits: number;
 }
 
 export interface ReclassAnswer {
-  readonly constraints: Constraints;
+  readonly constraints: AskedConstraints;
   readonly reason: string;
 }
 
