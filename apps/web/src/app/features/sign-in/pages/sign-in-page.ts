@@ -1,4 +1,13 @@
-import { booleanAttribute, ChangeDetectionStrategy, Component, ElementRef, inject, input, signal } from '@angular/core';
+import {
+  booleanAttribute,
+  ChangeDetectionStrategy,
+  Component,
+  ElementRef,
+  type OnInit,
+  inject,
+  input,
+  signal,
+} from '@angular/core';
 import { NonNullableFormBuilder, ReactiveFormsModule, Validators } from '@angular/forms';
 import { MatButtonModule } from '@angular/material/button';
 import { MatFormFieldModule } from '@angular/material/form-field';
@@ -49,7 +58,7 @@ import { showInvalid } from '../../../ui/show-invalid';
     </ts-doorway>
   `,
 })
-export class SignInPage {
+export class SignInPage implements OnInit {
   private readonly element = inject<ElementRef<HTMLElement>>(ElementRef).nativeElement;
   private readonly router = inject(Router);
   private readonly entry = inject(Entry);
@@ -67,7 +76,8 @@ export class SignInPage {
     password: ['', Validators.required],
   });
 
-  constructor() {
+  ngOnInit(): void {
+    this.form.controls.email.setValue(this.email() ?? '');
     void this.begin();
   }
 
@@ -95,8 +105,6 @@ export class SignInPage {
       this.entry.setUpOpen().catch(() => false), // the link is a courtesy; signing in says what is wrong
     ]);
     this.setUpOpen.set(open);
-    const email = this.email();
-    if (email) this.form.controls.email.setValue(email);
     if (view?.user) await this.router.navigateByUrl(this.target());
   }
 
