@@ -1,11 +1,18 @@
-import { Routes } from '@angular/router';
+import { type Routes } from '@angular/router';
 
-/** Documentation: no page answers here yet, so the address says "not found" rather than pretend. */
 export const documentationRoutes: Routes = [
-  { path: '', title: 'Documentation', loadComponent: () => import('../../shell/not-found').then((m) => m.NotFound) },
+  {
+    path: '',
+    title: 'Documentation',
+    loadComponent: () => import('./pages/versions-to-document-page').then((m) => m.VersionsToDocumentPage),
+  },
+  {
+    path: ':versionId',
+    title: 'Documentation',
+    loadComponent: () => import('./pages/version-documents-page').then((m) => m.VersionDocumentsPage),
+  },
 ];
 
-/** Documents: no page answers here yet, so the address says "not found" rather than pretend. */
 export const documentRoutes: Routes = [
-  { path: '', title: 'Documents', loadComponent: () => import('../../shell/not-found').then((m) => m.NotFound) },
+  { path: '', title: 'Documents', loadComponent: () => import('./pages/documents-page').then((m) => m.DocumentsPage) },
 ];

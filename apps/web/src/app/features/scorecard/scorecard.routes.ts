@@ -1,6 +1,11 @@
-import { Routes } from '@angular/router';
+import { type Routes } from '@angular/router';
+import { keepsUnsavedWork } from '../../core/unsaved-changes';
 
-/** Scorecard: no page answers here yet, so the address says "not found" rather than pretend. */
 export const scorecardRoutes: Routes = [
-  { path: '', title: 'Scorecard', loadComponent: () => import('../../shell/not-found').then((m) => m.NotFound) },
+  {
+    path: '',
+    title: 'Scorecard',
+    canDeactivate: [keepsUnsavedWork],
+    loadComponent: () => import('./pages/scorecard-page').then((m) => m.ScorecardPage),
+  },
 ];

@@ -1,16 +1,21 @@
-import { Routes } from '@angular/router';
+import { type Routes } from '@angular/router';
+import { keepsUnsavedWork } from '../../core/unsaved-changes';
 
-/** Version: no page answers here yet, so the address says "not found" rather than pretend. */
 export const versionRoutes: Routes = [
-  { path: '', title: 'Version', loadComponent: () => import('../../shell/not-found').then((m) => m.NotFound) },
+  { path: '', title: 'Versions', loadComponent: () => import('./pages/versions-page').then((m) => m.VersionsPage) },
+  {
+    path: ':versionId',
+    title: 'Version',
+    canDeactivate: [keepsUnsavedWork],
+    loadComponent: () => import('./pages/version-page').then((m) => m.VersionPage),
+  },
 ];
 
-/** Validation: no page answers here yet, so the address says "not found" rather than pretend. */
 export const validationRoutes: Routes = [
-  { path: '', title: 'Validation', loadComponent: () => import('../../shell/not-found').then((m) => m.NotFound) },
+  { path: '', title: 'Validation', loadComponent: () => import('./pages/validations-page').then((m) => m.ValidationsPage) },
+  { path: ':versionId', title: 'Validation', loadComponent: () => import('./pages/validation-page').then((m) => m.ValidationPage) },
 ];
 
-/** Reviews: no page answers here yet, so the address says "not found" rather than pretend. */
 export const reviewRoutes: Routes = [
-  { path: '', title: 'Reviews', loadComponent: () => import('../../shell/not-found').then((m) => m.NotFound) },
+  { path: '', title: 'Reviews', loadComponent: () => import('./pages/reviews-page').then((m) => m.ReviewsPage) },
 ];
