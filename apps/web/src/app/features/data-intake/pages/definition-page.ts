@@ -114,7 +114,9 @@ export class DefinitionPage {
     effect(() => {
       const wanted = this.editable() && (this.latest() === null || this.changing());
       const settled = this.draft.saveState() === 'saved' && this.draft.content() !== null && this.draft.problems().length === 0;
-      if (wanted && settled && this.draft.check() === null) untracked(() => void this.draft.count());
+      // A count that was overtaken by a change ends without a result, and the next one starts then.
+      const idle = !this.draft.checking() && this.draft.error() === null;
+      if (wanted && settled && idle && this.draft.check() === null) untracked(() => void this.draft.count());
     });
     this.runs.finished
       .pipe(

@@ -133,7 +133,7 @@ import { Condition, conditionOf, conditions, testWith, valueOf } from './exclusi
     .head,
     .test {
       display: grid;
-      grid-template-columns: repeat(3, minmax(0, 240px)) auto;
+      grid-template-columns: repeat(3, minmax(0, 240px)) max-content;
       gap: 10px;
       align-items: center;
     }
