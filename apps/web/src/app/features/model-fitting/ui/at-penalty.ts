@@ -41,7 +41,7 @@ export class AtPenalty {
     });
     return [
       row('AUC', 'area under the ROC curve, ties one half', (at) => metric(at.auc)),
-      row('95 % interval', 'DeLong 1988', (at) => `${metric(at.aucLower)}${'\u2009'}to${'\u2009'}${metric(at.aucUpper)}`),
+      row('95 % interval', 'DeLong 1988', (at) => `${metric(at.aucLower)}\u2013${metric(at.aucUpper)}`),
       row('KS', 'largest distance of the two distributions', (at) => metric(at.ks)),
       row('Slope', 'calibration slope; 1 is calibrated, above 1 over-shrunk', (at) => fixed(at.calibrationSlope, 2)),
       row('In the large', 'positive: more bads than predicted', (at) => fixed(at.calibrationInTheLarge, 2)),
