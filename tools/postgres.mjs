@@ -167,6 +167,8 @@ export function barredFolder(folder) {
 export function makeDataFolder(folder, withPostgres) {
   const barred = withPostgres ? barredFolder(folder) : undefined;
   if (barred) {
+    if (!fs.statSync(barred).isDirectory())
+      throw new SetupProblem(`The data folder ${folder} cannot be made: ${barred} is not a folder.`);
     throw new SetupProblem(
       `As root, PostgreSQL runs as the account "postgres", and that account cannot enter ${barred}. Choose another data folder, for example TALLYSTONE_DATA=/var/lib/tallystone, or allow it to pass with: chmod o+x ${barred}`,
     );
