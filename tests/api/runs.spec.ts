@@ -1,9 +1,11 @@
 import { type ChildProcess, fork } from 'node:child_process';
+import type { Server } from 'node:http';
+import type { AddressInfo } from 'node:net';
 import { fileURLToPath } from 'node:url';
 import type { Run } from '@tallystone/contracts/runs/schema';
 import { Pool } from 'pg';
 import type supertest from 'supertest';
-import { afterAll, afterEach, beforeAll, describe, expect, it } from 'vitest';
+import { afterAll, afterEach, beforeAll, describe, expect, it, vi } from 'vitest';
 import { inTransaction } from '../../server/src/database/transaction';
 import { startRun } from '../../server/src/jobs/start-run';
 import { startWorker, type WorkerService } from '../../server/src/jobs/worker';
@@ -16,11 +18,16 @@ let otto: Visitor;
 let owner: Pool;
 const children: ChildProcess[] = [];
 let here: WorkerService | null = null;
+let listening: Server;
+
+// Workers are killed, frozen and given up on: seconds of waiting that a loaded machine stretches.
+vi.setConfig({ testTimeout: 90_000 });
 
 beforeAll(async () => {
   server = await IntakeServer.start({ worker: false });
   owner = new Pool({ connectionString: server.database.ownerUrl });
   await owner.query(countingTables);
+  listening = server.app.listen(0, '127.0.0.1');
   marian = await server.signIn('marian', 'modeller');
   otto = await server.signIn('otto', 'auditor');
 });
@@ -31,6 +38,7 @@ afterEach(async () => {
 });
 afterAll(async () => {
   await owner.end();
+  await new Promise((resolve) => listening.close(resolve));
   await server.stop();
 });
 
@@ -196,8 +204,8 @@ describe('events', () => {
 
   it('end with the session', async () => {
     const visitor = await server.signIn('streaming', 'modeller');
-    const ended = stream(visitor, '0', 10_000);
-    await new Promise((resolve) => setTimeout(resolve, 500));
+    const ended = stream(visitor, '0', 30_000);
+    await new Promise((resolve) => setTimeout(resolve, 1500));
     const asked = Date.now();
     await visitor.delete('/api/session').expect(200);
     await ended;
@@ -205,34 +213,42 @@ describe('events', () => {
   });
 });
 
-/** What the event stream sends within a while. */
+/** What the event stream sends within a while, or until the server ends it. Over a connection of its own, as a browser holds it. */
 async function stream(
   visitor: Visitor,
   lastEventId: string,
   patience = 1200,
 ): Promise<{ id: number; data: { runId: string; state: string } }[]> {
-  const chunks: string[] = [];
-  await new Promise<void>((resolve, reject) => {
-    const request = visitor
-      .get('/api/events')
-      .set('Last-Event-ID', lastEventId)
-      .buffer(false)
-      .parse((response, done) => {
-        response.on('data', (chunk: Buffer) => chunks.push(chunk.toString('utf8')));
-        response.on('end', () => done(null, null));
-        response.on('close', () => done(null, null));
-        setTimeout(() => (response as unknown as { destroy(): void }).destroy(), patience);
-      });
-    request.then(
-      () => resolve(),
-      (error: { code?: string }) =>
-        error.code === 'ECONNRESET' || error.code === 'ABORTED' ? resolve() : reject(error as Error),
-    );
+  const { port } = listening.address() as AddressInfo;
+  const cookies = (visitor.agent as unknown as { jar: CookieJar }).jar.getCookies({
+    path: '/',
+    domain: '127.0.0.1',
+    secure: false,
+    script: false,
   });
-  return [...chunks.join('').matchAll(/id: (\d+)\nevent: run\ndata: (.*)\n/g)].map(([, id, data]) => ({
+  const stop = new AbortController();
+  const timer = setTimeout(() => stop.abort(), patience);
+  let text = '';
+  try {
+    const response = await fetch(`http://127.0.0.1:${port}/api/events`, {
+      headers: { 'Last-Event-ID': lastEventId, Cookie: cookies.toValueString() },
+      signal: stop.signal,
+    });
+    expect(response.status).toBe(200);
+    for await (const chunk of response.body!.pipeThrough(new TextDecoderStream())) text += chunk;
+  } catch (error) {
+    if (!stop.signal.aborted) throw error;
+  }
+  clearTimeout(timer);
+  return [...text.matchAll(/id: (\d+)\nevent: run\ndata: (.*)\n/g)].map(([, id, data]) => ({
     id: Number(id),
     data: JSON.parse(data),
   }));
+}
+
+/** As much of superagent's cookie jar as is used here. */
+interface CookieJar {
+  getCookies(access: { path: string; domain: string; secure: boolean; script: boolean }): { toValueString(): string };
 }
 
 describe('idempotency', () => {
