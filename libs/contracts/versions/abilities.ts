@@ -13,3 +13,6 @@ export const versionAbilities = [
 ] as const;
 export type VersionAbility = (typeof versionAbilities)[number];
 export const versionListAbilities = ['freeze'] as const;
+/** Sent with the session: has models to look into, and so versions under review to find. */
+export const reviewAbilities = ['reviews.read'] as const;
+export type ReviewAbility = (typeof reviewAbilities)[number];

@@ -21,6 +21,9 @@ export function canListModels(person: Actor): Decision {
 /** Reads every model, not only their own. */
 export const seesAllModels = (person: Actor): boolean => has(person, 'validator', 'compliance', 'auditor', 'admin');
 
+/** Looks inside models, its own or all: an admin does not. */
+export const looksInsideModels = (person: Actor): boolean => has(person, 'modeller', 'validator', 'compliance', 'auditor');
+
 export function canCreateModel(person: Actor): Decision {
   return has(person, 'modeller') ? allowed : forbidden('Modellers enter models in the inventory.');
 }
