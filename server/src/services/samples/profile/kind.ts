@@ -47,7 +47,9 @@ export function judgeKind(values: readonly Counted[], reader: NumberReader): Jud
   const notNumbers = values.filter(({ text }) => Number.isNaN(reader.read(text)));
   const odd = sum(notNumbers);
   if (odd === 0) return { kind: 'numeric', against: null, flags: [] };
-  if (total - odd >= mostlyNumbers * total) {
+  // NaN, Inf, 0x10 and the like stand where numbers were meant: they are counted, and make no category.
+  const words = sum(notNumbers.filter(({ text }) => reader.fault(text) === 'text'));
+  if (odd < total && total - words >= mostlyNumbers * total) {
     const finding = `${thin(odd)} of ${thin(total)} values are no numbers: ${listed(notNumbers, (text) => ` (${faultWords[reader.fault(text)]})`)}.`;
     return { kind: 'numeric', against: finding, flags: [{ code: 'unreadable-numbers', weight: 'look', finding }] };
   }
@@ -103,8 +105,8 @@ const sum = (values: readonly Counted[]): number => values.reduce((total, { coun
 
 function listed(values: readonly Counted[], more: (text: string) => string = () => ''): string {
   const sorted = [...values].sort((a, b) => b.count - a.count || (a.text < b.text ? -1 : 1));
-  const shown = sorted.slice(0, 5).map(({ text, count }) => `${JSON.stringify(text.slice(0, 40))}${more(text)} ${thin(count)}×`);
-  return shown.join(', ') + (sorted.length > 5 ? ` and ${thin(sorted.length - 5)} more` : '');
+  const shown = sorted.slice(0, 8).map(({ text, count }) => `${JSON.stringify(text.slice(0, 40))}${more(text)} ${thin(count)}×`);
+  return shown.join(', ') + (sorted.length > 8 ? ` and ${thin(sorted.length - 8)} more` : '');
 }
 
 /** Whole numbers with a narrow no-break space between thousands. */
