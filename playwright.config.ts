@@ -21,7 +21,7 @@ export default defineConfig({
   retries: 0,
   forbidOnly: true,
   timeout: 90_000,
-  expect: { timeout: 10_000 },
+  expect: { timeout: 20_000 },
   reporter: [['list']],
   use: {
     viewport: { width: 1280, height: 900 },

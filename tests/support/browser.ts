@@ -30,7 +30,7 @@ export const test = base.extend<Fixtures>({
       await page.getByLabel('E-mail address').fill(person.email);
       await page.getByLabel('Password', { exact: true }).fill(person.password);
       await page.getByRole('button', { name: 'Sign in' }).click();
-      await expect(page).not.toHaveURL(/sign-in/);
+      await expect(page).not.toHaveURL(/sign-in/, { timeout: 30_000 });
     });
   },
   cleanPages: [
