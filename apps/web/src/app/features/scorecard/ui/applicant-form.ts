@@ -31,7 +31,6 @@ export class ApplicantForm {
       column,
       label,
       numeric: kind === 'numeric',
-      hint: kind === 'numeric' ? 'a number, or a special code' : 'a category as in the file',
       suggestions: kind === 'numeric' ? [] : categoriesOf(bins.map((bin) => bin.label)),
     })),
   );

@@ -35,7 +35,12 @@ export class ScoreFigure {
   protected readonly width = signal(780);
   private dragging = false;
 
-  protected readonly layout = computed(() => ({ left: 8, right: Math.max(300, this.width()) - 8, top: 40, rule: 168, bottom: 296, height: 326 }));
+  /** On a narrow screen what the notch says has a line of its own. */
+  protected readonly narrow = computed(() => this.width() < 560);
+  protected readonly layout = computed(() => {
+    const head = this.narrow() ? 22 : 0;
+    return { head, left: 8, right: Math.max(300, this.width()) - 8, top: head + 40, rule: head + 168, bottom: head + 296, height: head + 326 };
+  });
   protected readonly finding = computed(() => bandsFinding(this.scorecard().bands));
   protected readonly steps = computed<Step[]>(() => {
     const { from, step, goods, bads } = this.scorecard().distribution;
@@ -99,9 +104,9 @@ export class ScoreFigure {
     const label = cutOffLabel(this.scorecard().distribution, cutOff);
     const room = label.length * 6.6 + 16;
     const { left, right } = this.layout();
+    if (this.narrow()) return { at, label, x: 0, anchor: 'start' };
     if (at + room < right) return { at, label, x: at + 13, anchor: 'start' };
-    if (at - room > left) return { at, label, x: at - 13, anchor: 'end' };
-    return { at, label, x: left, anchor: 'start', above: true };
+    return at - room > left ? { at, label, x: at - 13, anchor: 'end' } : { at, label, x: left, anchor: 'start' };
   });
   protected readonly range = computed(() => {
     const [low, high] = this.x().domain();

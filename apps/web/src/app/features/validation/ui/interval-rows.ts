@@ -33,8 +33,7 @@ export function intervalChart(
   const low = Math.min(0, ...intervals.map(({ value, lower }) => Math.min(value, lower ?? value)));
   const high = Math.max(0, ...intervals.map(({ value, upper }) => Math.max(value, upper ?? value)));
   const x = scaleLinear()
-    .domain(low === high ? [0, 1] : [low, high])
-    .nice(5)
+    .domain(low === high ? [0, 1] : [low - 0.02 * (high - low), high + 0.02 * (high - low)])
     .range([left, right]);
   const axis = 6 + intervals.length * rowHeight;
   return {

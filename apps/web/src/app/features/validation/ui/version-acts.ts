@@ -27,6 +27,8 @@ import { gateAhead, missing } from './version-view';
         }
         @if (may('conclude')) {
           <a tsDecide matButton="outlined" [routerLink]="['/models', version().modelId, 'validation', version().id]">Tests</a>
+        }
+        @if (may('conclude')) {
           <button tsDecide matButton="filled" type="button" [disabled]="acting.busy() || gaps() > 0" (click)="conclude()">Conclude and sign</button>
         }
         @if (may('accept')) {
@@ -43,12 +45,17 @@ import { gateAhead, missing } from './version-view';
     @for (refusal of refusals(); track refusal) {
       <p class="ts-second refusal">{{ refusal }}</p>
     }
-    <ts-problems [error]="acting.error()" />
+    @if (acting.error(); as error) {
+      <ts-problems [error]="error" />
+    }
   `,
   styles: `
     :host {
       display: grid;
       gap: 12px;
+    }
+    :host(:empty) {
+      display: none;
     }
   `,
 })
