@@ -1,7 +1,7 @@
 import { randomUUID } from 'node:crypto';
 import { AskedConstraints } from '@tallystone/contracts/binnings/bins';
 import type { SentEdit } from '@tallystone/contracts/binnings/edits';
-import { edgeNear, moveCut } from '@tallystone/numeric/bench';
+import { benchWarnings, edgeNear, moveCut, readBench } from '@tallystone/numeric/bench';
 import { binsOfEntry } from '../classing/definition';
 import type { Context } from '../context';
 import { inTransaction } from '../database/transaction';
@@ -78,7 +78,7 @@ async function moveToRoundNumber(context: Context, binningId: string, modeller: 
     for (let cut = before.edges.length - 1; cut >= 0; cut--) {
       const near = edgeNear(fine, before, cut, Math.round(before.edges[cut] / 10) * 10);
       const moved = near === null || near % 5 !== 0 ? null : moveCut(fine, before, cut, near);
-      if (!moved) continue;
+      if (!moved || benchWarnings(readBench(fine, moved.bins), found.characteristic.constraints).length > 0) continue;
       const edit: SentEdit = {
         id: randomUUID(),
         kind: 'cut moved',
