@@ -68,7 +68,7 @@ describe('pages', () => {
     expect(headers['x-request-id']).toMatch(/^[\w-]{8,}$/);
   });
 
-  it('over HTTPS have cookies that no other host can plant', async () => {
+  it('over HTTPS have cookies that no other host can plant, until the process is asked to stop', async () => {
     const secure = await IntakeServer.start({
       worker: false,
       environment: { ORIGIN: 'https://tally.saltmarsh.example', TALLYSTONE_WEB: web },
@@ -79,6 +79,11 @@ describe('pages', () => {
       expect(headers['strict-transport-security']).toContain('max-age=31536000');
       const opened = await agent.get('/api/session').set('X-Forwarded-Proto', 'https').expect(200);
       expect(String(opened.headers['set-cookie'])).toMatch(/^XSRF-TOKEN=.*; Path=\/; Secure; SameSite=Lax$/);
+      // Once asked to stop it is alive, but not ready for more.
+      expect((await agent.get('/health/ready').expect(200)).body).toEqual({ status: 'ok' });
+      secure.context.beginStop();
+      expect((await agent.get('/health/ready').expect(503)).body).toEqual({ status: 'stopping' });
+      await agent.get('/health/live').expect(200);
     } finally {
       await secure.stop();
     }

@@ -131,5 +131,6 @@ function present(endpoint: Endpoint, answer: unknown): unknown {
 function send(endpoint: Endpoint, response: Response, body: unknown): void {
   if (response.headersSent) return;
   if (endpoint.response === 'nothing') response.status(204).end();
-  else response.status(endpoint.status ?? 200).json(body);
+  // A status that `act` chose itself stands.
+  else response.status(response.statusCode === 200 ? (endpoint.status ?? 200) : response.statusCode).json(body);
 }
