@@ -59,7 +59,11 @@ interface TableRow {
           <tr>
             <th scope="row">{{ row.label }}</th>
             @for (cell of row.cells; track $index) {
-              <td [class.selected]="isSelected($index)">{{ cell }}</td>
+              @if (isNarrow($index) && cell !== '') {
+                <td [class.selected]="isSelected($index)" [attr.aria-label]="cell" [title]="cell">…</td>
+              } @else {
+                <td [class.selected]="isSelected($index)">{{ cell }}</td>
+              }
             }
           </tr>
         }
@@ -140,7 +144,7 @@ export class BinsTable {
   /** A key on a bin's head, for the shortcuts of the bench. */
   readonly pressed = output<{ bin: number; event: KeyboardEvent }>();
 
-  protected readonly partitionLabel = computed(() => partitionName(this.partition() as Partition));
+  protected readonly partitionLabel = computed(() => partitionName(this.partition()));
 
   /** Columns with the gaps between them (null), so that each stands under its bin. */
   protected readonly spaced = computed<readonly (DrawnBin | null)[]>(() => {
@@ -195,6 +199,11 @@ export class BinsTable {
   protected isSelected(index: number): boolean {
     const column = this.spaced()[index];
     return column !== null && column.bin !== null && column.bin === this.selected();
+  }
+
+  /** A figure that is cut off would be read as another one: too narrow a bin shows none, and the table view has them all. */
+  protected isNarrow(index: number): boolean {
+    return (this.widths()[index + 1] ?? 0) < 42;
   }
 
   protected toggle(bin: number): void {
