@@ -1,0 +1,75 @@
+import type { Transaction } from 'sequelize';
+import type { RunContext } from '../../jobs/handler';
+import { Binning, BinningCharacteristic } from '../../models/binning';
+import { actorOf } from '../people/actor-of';
+import { appendRecord } from '../record/append';
+import { findDefinition, loadPrepared } from '../samples/definitions';
+import { splitColumns } from './barred';
+import { classCharacteristics } from './class-characteristics';
+
+type Classed = Awaited<ReturnType<typeof classCharacteristics>>;
+export interface ClassedBinning extends Classed {
+  readonly binning: Binning;
+}
+
+/** Classes every characteristic that a binning takes. Nothing is stored before the last one is classed. */
+export async function classBinning(
+  binningId: string,
+  { context, signal, progress }: Pick<RunContext<unknown>, 'context' | 'signal' | 'progress'>,
+): Promise<ClassedBinning> {
+  const { sequelize } = context;
+  progress('Reading the sample', null);
+  const binning = await Binning.findByPk(binningId, { rejectOnEmpty: true });
+  const definition = await findDefinition(sequelize, binning.definitionId);
+  if (!definition) throw new Error(`Binning ${binningId} has no sample definition`);
+  const counted = await loadPrepared(sequelize, definition.id);
+  const { taken } = splitColumns(definition.content.columns);
+  progress('Classing characteristics', 0);
+  const classed = await classCharacteristics(
+    sequelize,
+    { sampleId: definition.sampleId, data: definition.content.data, counted, columns: taken, constraints: binning.constraints },
+    { signal, onDone: (done) => progress('Classing characteristics', done / taken.length) },
+  );
+  return { binning, ...classed };
+}
+
+/** Writes the bins, once, in the transaction that ends the run. */
+export async function storeClassing(
+  tx: Transaction,
+  run: { readonly personId: string },
+  { binning, classed, unusable }: ClassedBinning,
+): Promise<{ binningId: string; characteristics: number }> {
+  const binningId = binning.id;
+  await BinningCharacteristic.bulkCreate(
+    classed.map(({ column, kind, position, definition: entry, automatic, constraints, fine, outOfTime, summary, outOfTimeWarnings }) => {
+      const oneBin = summary.warnings.find(({ code }) => code === 'one-bin');
+      return {
+        binningId,
+        position,
+        columnName: column,
+        kind,
+        definition: entry,
+        automatic,
+        constraints,
+        fine,
+        outOfTime,
+        summary,
+        outOfTimeWarnings,
+        included: oneBin === undefined,
+        leftOutReason: oneBin?.message ?? '',
+        changedBy: run.personId,
+      };
+    }),
+    { transaction: tx },
+  );
+  await Binning.update({ readyAt: new Date(), barred: [...binning.barred, ...unusable] }, { where: { id: binningId }, transaction: tx });
+  await appendRecord(tx, {
+    actor: await actorOf(run.personId, tx),
+    action: 'binning.classed',
+    entity: 'binning',
+    entityId: binningId,
+    modelId: binning.modelId,
+    after: { characteristics: classed.length },
+  });
+  return { binningId, characteristics: classed.length };
+}
