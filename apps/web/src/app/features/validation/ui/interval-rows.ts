@@ -47,6 +47,6 @@ export function intervalChart(
       const path = lower === null || upper === null ? null : `M${x(lower)} ${y - 5}v10M${x(lower)} ${y}H${x(upper)}M${x(upper)} ${y - 5}v10`;
       return { y, x: x(value), path };
     }),
-    ticks: x.ticks(Math.max(2, Math.min(7, Math.floor((right - left) / 56)))).map((value) => ({ value, x: x(value), text: fixed(value, decimals) })),
+    ticks: x.ticks(Math.max(3, Math.min(7, Math.floor((right - left) / 56)))).map((value) => ({ value, x: x(value), text: fixed(value, decimals) })),
   };
 }
