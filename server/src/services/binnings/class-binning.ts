@@ -41,28 +41,33 @@ export async function storeClassing(
 ): Promise<{ binningId: string; characteristics: number }> {
   const binningId = binning.id;
   await BinningCharacteristic.bulkCreate(
-    classed.map(({ column, kind, position, definition: entry, automatic, constraints, fine, outOfTime, summary, outOfTimeWarnings }) => {
-      const oneBin = summary.warnings.find(({ code }) => code === 'one-bin');
-      return {
-        binningId,
-        position,
-        columnName: column,
-        kind,
-        definition: entry,
-        automatic,
-        constraints,
-        fine,
-        outOfTime,
-        summary,
-        outOfTimeWarnings,
-        included: oneBin === undefined,
-        leftOutReason: oneBin?.message ?? '',
-        changedBy: run.personId,
-      };
-    }),
+    classed.map(
+      ({ column, kind, position, definition: entry, automatic, constraints, fine, outOfTime, summary, outOfTimeWarnings }) => {
+        const oneBin = summary.warnings.find(({ code }) => code === 'one-bin');
+        return {
+          binningId,
+          position,
+          columnName: column,
+          kind,
+          definition: entry,
+          automatic,
+          constraints,
+          fine,
+          outOfTime,
+          summary,
+          outOfTimeWarnings,
+          included: oneBin === undefined,
+          leftOutReason: oneBin?.message ?? '',
+          changedBy: run.personId,
+        };
+      },
+    ),
     { transaction: tx },
   );
-  await Binning.update({ readyAt: new Date(), barred: [...binning.barred, ...unusable] }, { where: { id: binningId }, transaction: tx });
+  await Binning.update(
+    { readyAt: new Date(), barred: [...binning.barred, ...unusable] },
+    { where: { id: binningId }, transaction: tx },
+  );
   await appendRecord(tx, {
     actor: await actorOf(run.personId, tx),
     action: 'binning.classed',

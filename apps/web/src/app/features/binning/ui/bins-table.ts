@@ -1,7 +1,7 @@
 import { ChangeDetectionStrategy, Component, computed, input, model, output } from '@angular/core';
 import type { BenchReading, PartitionName } from '@tallystone/numeric/bench';
 import { DASH, share, woe } from '../../../ui/numbers';
-import { type Partition, partitionName } from '../../../ui/partition-mark';
+import { partitionName } from '../../../ui/partition-mark';
 import { type DrawnBin, sizes } from './geometry';
 
 interface TableRow {
