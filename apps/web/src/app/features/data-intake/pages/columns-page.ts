@@ -1,4 +1,14 @@
-import { ChangeDetectionStrategy, Component, computed, effect, inject, input, untracked } from '@angular/core';
+import {
+  ChangeDetectionStrategy,
+  Component,
+  ElementRef,
+  computed,
+  effect,
+  inject,
+  input,
+  untracked,
+  viewChild,
+} from '@angular/core';
 import { MatButtonModule } from '@angular/material/button';
 import { Router, RouterLink } from '@angular/router';
 import { warnBeforeUnload } from '../../../core/unsaved-changes';
@@ -9,7 +19,7 @@ import { ProblemList } from '../../../ui/problem-list';
 import { DraftStore } from '../data/draft-store';
 import { ColumnProfile, columnsOf, oneSample } from '../data/samples';
 import { ColumnEditor } from '../ui/column-editor';
-import { mostFrequentOf, rangeOf } from '../ui/findings';
+import { flagsOf, mostFrequentOf, rangeOf } from '../ui/findings';
 import { SampleSteps } from '../ui/sample-steps';
 import { SaveStateNote } from '../ui/save-state';
 import type { DefinedColumn } from '@tallystone/contracts/samples/definition';
@@ -82,6 +92,20 @@ interface Row {
     </div>
   `,
   styles: `
+    ts-column-editor {
+      position: sticky;
+      top: 16px;
+      max-height: calc(100vh - 32px);
+      overflow-y: auto;
+      scroll-margin-top: 16px;
+      padding: 2px;
+    }
+    @media (max-width: 899px) {
+      ts-column-editor {
+        position: static;
+        max-height: none;
+      }
+    }
     .name {
       font: inherit;
       color: var(--ts-primary);
@@ -109,6 +133,7 @@ export class ColumnsPage {
   readonly column = input<string>();
   readonly sort = input<string>();
 
+  private readonly editor = viewChild(ColumnEditor, { read: ElementRef<HTMLElement> });
   protected readonly sample = oneSample(
     () => this.modelId(),
     () => this.sampleId(),
@@ -156,7 +181,7 @@ export class ColumnsPage {
     {
       key: 'flags',
       label: 'Flags',
-      value: (row) => row.profile.flags.map(({ code }) => code.replaceAll('-', ' ')).join(', '),
+      value: (row) => flagsOf(row.profile),
       width: 30,
       sortable: true,
     },
@@ -174,8 +199,10 @@ export class ColumnsPage {
   protected readonly isQuiet = (row: Row): boolean => row.defined?.role === 'not used';
   protected readonly isSelected = (row: Row): boolean => row === this.chosen();
 
-  protected choose(column: string): void {
-    void this.router.navigate([], { queryParams: { column }, queryParamsHandling: 'merge', replaceUrl: true });
+  protected async choose(column: string): Promise<void> {
+    await this.router.navigate([], { queryParams: { column }, queryParamsHandling: 'merge', replaceUrl: true });
+    // On a narrow screen the column's own part stands below the table.
+    if (globalThis.innerWidth < 900) this.editor()?.nativeElement.scrollIntoView({ block: 'start' });
   }
 
   protected reorder(sort: TableSort | null): void {

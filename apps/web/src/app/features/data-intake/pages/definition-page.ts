@@ -82,6 +82,8 @@ export class DefinitionPage {
   protected readonly latest = computed(() =>
     this.definitions.hasValue() ? (this.definitions.value().definitions[0] ?? null) : null,
   );
+  /** Shown instead of the draft until somebody works on another definition. */
+  protected readonly confirmed = computed(() => (this.changing() ? null : this.latest()));
   protected readonly weight = computed(() => this.draft.content()?.columns.find(({ role }) => role === 'weight')?.column ?? null);
   protected readonly problems = computed(() => {
     const counted = this.draft.check()?.problems ?? [];

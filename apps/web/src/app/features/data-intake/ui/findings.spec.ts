@@ -1,6 +1,6 @@
 import type { DefinitionCounts } from '@tallystone/contracts/samples/definition';
 import { describe, expect, it } from 'vitest';
-import { badRateOut, countsFinding, plain, samplesFinding } from './findings';
+import { badRateOut, countsFinding, plain, samplesFinding, waterfallFinding } from './findings';
 import { conditionOf, testWith, valueOf } from './exclusion-test';
 
 const counts: DefinitionCounts = {
@@ -20,6 +20,12 @@ const counts: DefinitionCounts = {
 describe('findings of the sample pages', () => {
   it('say what is left and how much of it is bad', () => {
     expect(countsFinding(counts)).toBe('980 of 1\u202f000 rows are development, 80 of them bad (8.2\u202f%).');
+  });
+  it('name the step that takes out most', () => {
+    expect(waterfallFinding(counts)).toBe('20 rows take no part, most by “staff loans” (20).');
+    expect(waterfallFinding({ ...counts, waterfall: [counts.waterfall[0]] })).toBe(
+      'No row is left out: every row is in one of the partitions.',
+    );
   });
   it('give a bad rate only where there is an outcome', () => {
     expect(badRateOut(counts.waterfall[1])).toBe(0.25);

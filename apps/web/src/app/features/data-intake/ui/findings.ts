@@ -42,16 +42,12 @@ export function plain(value: number): string {
 
 /** "18 to 77, median 41": what a quality table has room for. */
 export function rangeOf(profile: ColumnProfile): string {
-  const { numeric, date, text } = profile;
+  const { numeric, date } = profile;
   if (numeric) {
     const write = plain;
     return `${write(numeric.smallest)} to ${write(numeric.largest)}`;
   }
   if (date) return `${date.first} to ${date.last}`;
-  if (text)
-    return text.shortest === text.longest
-      ? plural(text.longest, 'character')
-      : `${count(text.shortest)} to ${plural(text.longest, 'character')}`;
   return '';
 }
 
@@ -69,6 +65,34 @@ export function badRateOut(step: WaterfallStep): number | null {
   if (step.outGoods === null || step.outBads === null || step.outGoods + step.outBads === 0) return null;
   return step.outBads / (step.outGoods + step.outBads);
 }
+
+/** The step that takes out most of the rows, for the figure under the page's own sentence. */
+export function waterfallFinding({ waterfall }: DefinitionCounts): string {
+  const steps = waterfall.filter(
+    ({ kind, out }) => out > 0 && (kind === 'exclusion' || kind === 'outcome' || kind === 'declined'),
+  );
+  const [most] = [...steps].sort((a, b) => b.out - a.out);
+  if (!most) return 'No row is left out: every row is in one of the partitions.';
+  const all = steps.reduce((sum, { out }) => sum + out, 0);
+  return `${plural(all, 'row')} ${all === 1 ? 'takes' : 'take'} no part, most by “${most.label}” (${count(most.out)}).`;
+}
+
+const flagWords: Partial<Record<ColumnProfile['flags'][number]['code'], string>> = {
+  'special-code-suspected': 'special codes?',
+  'looks-like-identifier': 'identifier',
+  'looks-like-email': 'e-mail',
+  'looks-like-name': 'names',
+  'looks-like-protected': 'protected?',
+  'possible-leakage': 'leakage?',
+  'repeated-identifiers': 'repeated',
+  'unreadable-numbers': 'no numbers',
+  'numbers-as-text': 'numbers as text',
+  'doubtful-dates': 'dates?',
+};
+
+/** The flags in a word each; the sentences stand beside the column. */
+export const flagsOf = (profile: ColumnProfile): string =>
+  profile.flags.map(({ code }) => flagWords[code] ?? code.replaceAll('-', ' ')).join(', ');
 
 export function countsFinding(counts: DefinitionCounts): string {
   const source = counts.waterfall[0]?.left ?? 0;

@@ -5,7 +5,7 @@ import { Column } from '../../../ui/column';
 import { ElementWidth } from '../../../ui/element-width';
 import { FigureFrame, FigurePoint } from '../../../ui/figure-frame';
 import { MINUS, count, plural, share } from '../../../ui/numbers';
-import { badRateOut, countsFinding } from './findings';
+import { badRateOut, waterfallFinding } from './findings';
 
 const row = 44;
 
@@ -59,7 +59,7 @@ export class WaterfallFigure {
   readonly counts = input.required<DefinitionCounts>();
   protected readonly width = signal(640);
   protected readonly height = computed(() => this.counts().waterfall.length * row + 4);
-  protected readonly finding = computed(() => countsFinding(this.counts()));
+  protected readonly finding = computed(() => waterfallFinding(this.counts()));
 
   protected readonly bars = computed(() => {
     const { waterfall } = this.counts();
