@@ -1,4 +1,3 @@
-import { z } from 'zod';
 import { recordEvent } from '../record/event';
 import { ScorecardSettings } from './schema';
 

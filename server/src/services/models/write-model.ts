@@ -40,7 +40,7 @@ export async function editModel(tx: Transaction, person: Actor, model: FoundMode
   if (changed.length === 0) return model;
   const pick = (of: Partial<ModelFields>): Partial<ModelFields> => Object.fromEntries(changed.map((field) => [field, of[field]]));
   await GovernedModel.update(
-    { ...pick(edit), revision: model.revision + 1, updatedAt: sequelizeOf().fn('now') as unknown as Date },
+    { ...pick(edit), revision: model.revision + 1, updatedAt: sequelizeOf().fn('now') },
     { where: { id: model.id, revision: model.revision }, transaction: tx },
   );
   await appendRecord(tx, {

@@ -29,7 +29,7 @@ export interface KeptCharacteristic {
 
 export const defaultSettings: ScorecardSettings = {
   scaling: defaultScaling,
-  bands: defaultBands as ScorecardSettings['bands'],
+  bands: defaultBands,
   reasons: defaultReasons,
   cutOff: null,
 };

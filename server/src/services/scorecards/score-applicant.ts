@@ -69,7 +69,7 @@ function codesOf(loaded: LoadedScorecard, { fields }: Applicant): number[] {
     if (!(error instanceof ReplayError)) throw error;
     throw invalid([
       ...problems,
-      ...error.problems.map(({ code, message, where }) => ({ code, message, where: (typeof where.column === 'string' ? { field: where.column } : {}) as Record<string, string> })),
+      ...error.problems.map(({ code, message, where }) => ({ code, message, where: (typeof where.column === 'string' ? { field: where.column } : {}) })),
     ]);
   }
 }

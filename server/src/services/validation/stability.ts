@@ -1,6 +1,6 @@
 import type { StabilityRow } from '@tallystone/contracts/validation/schema';
 import type { Result } from '@tallystone/contracts/result/types';
-import type { BinnedCharacteristic, Specification } from '@tallystone/contracts/specification/types';
+import type { Specification } from '@tallystone/contracts/specification/types';
 import { stabilityOfCoefficients, stabilityOfPoints } from '@tallystone/numeric';
 import type { Transaction } from 'sequelize';
 import type { Context } from '../../context';

@@ -65,7 +65,7 @@ export async function actOnVersion(context: Context, tx: Transaction, version: F
       throw conflict(
         'gate-closed',
         `${missing.length === 1 ? 'One thing stands' : `${missing.length} things stand`} in the way.`,
-        missing.map(({ code, label, detail, path }) => ({ code, message: `${label}: ${detail}`, where: (path === null ? {} : { path }) as Record<string, string> })),
+        missing.map(({ code, label, detail, path }) => ({ code, message: `${label}: ${detail}`, where: (path === null ? {} : { path }) })),
       );
     }
   }
