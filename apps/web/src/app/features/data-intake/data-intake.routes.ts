@@ -1,6 +1,14 @@
-import { Routes } from '@angular/router';
-import { keepsUnsavedWork } from '../../core/unsaved-changes';
+import { EnvironmentInjector, inject, runInInjectionContext } from '@angular/core';
+import { type CanDeactivateFn, type GuardResult, type Routes } from '@angular/router';
+import { type HoldsWork, keepsUnsavedWork } from '../../core/unsaved-changes';
 import { DraftStore } from './data/draft-store';
+
+/** The draft saves by itself, so leaving saves first; only what could not be saved is asked about. */
+const savesFirst: CanDeactivateFn<HoldsWork> = async (page, ...rest) => {
+  const injector = inject(EnvironmentInjector);
+  await inject(DraftStore).flush();
+  return runInInjectionContext(injector, () => keepsUnsavedWork(page, ...rest) as Promise<GuardResult>);
+};
 
 /** The sample: from the file to the definition that everything else rests on. */
 export const dataIntakeRoutes: Routes = [
@@ -23,13 +31,13 @@ export const dataIntakeRoutes: Routes = [
       {
         path: 'columns',
         title: 'Columns',
-        canDeactivate: [keepsUnsavedWork],
+        canDeactivate: [savesFirst],
         loadComponent: () => import('./pages/columns-page').then((m) => m.ColumnsPage),
       },
       {
         path: 'definition',
         title: 'Definition',
-        canDeactivate: [keepsUnsavedWork],
+        canDeactivate: [savesFirst],
         loadComponent: () => import('./pages/definition-page').then((m) => m.DefinitionPage),
       },
     ],
