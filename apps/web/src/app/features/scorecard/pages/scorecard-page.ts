@@ -33,6 +33,7 @@ import {
   badRateOf,
   bandLabel,
   decisionWords,
+  freezeWords,
   pointsUnder,
   roundingWords,
   scaleReadings,
@@ -218,7 +219,7 @@ export class ScorecardPage {
     if (!scorecard || (this.unsaved() && !(await this.save()))) return;
     const answer = await this.ask.for({
       title: 'Freeze this scorecard?',
-      text: 'Data, bins, fit, points and settings become a version with a fingerprint. Nobody can change it afterwards; a change is a new version.',
+      text: freezeWords(this.scorecard() ?? scorecard),
       accept: 'Freeze',
       reason: { label: 'Note: what this version is for', required: false },
     });

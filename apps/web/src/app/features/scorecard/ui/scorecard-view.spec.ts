@@ -5,6 +5,7 @@ import {
   bandsFinding,
   cutOffLabel,
   decisionWords,
+  freezeWords,
   list,
   pointsUnder,
   readEdges,
@@ -59,6 +60,8 @@ describe('what to decide next', () => {
     expect(withoutReason(untold)).toEqual(['age', 'home']);
     expect(scorecardDecision(untold)).toBe('reasons');
     expect(decisionWords(untold)).toMatch(/^age and home: say what/);
+    expect(freezeWords(untold)).toContain('2 characteristics have no reason text');
+    expect(freezeWords(smallScorecard)).not.toContain('reason text');
     expect(scorecardDecision(withSettings({ cutOff: null }))).toBe('cut-off');
     expect(scorecardDecision(smallScorecard)).toBe('freeze');
     expect(scorecardDecision({ ...smallScorecard, characteristics: [] })).toBe('nothing-kept');

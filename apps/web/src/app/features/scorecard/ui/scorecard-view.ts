@@ -115,6 +115,16 @@ export function decisionWords(scorecard: Scorecard): string {
   }
 }
 
+/** What freezing does, and what a submission will miss that only the scorecard can give. */
+export function freezeWords(scorecard: Scorecard): string {
+  const untold = withoutReason(scorecard).length;
+  const gap =
+    untold === 0
+      ? ''
+      : ` ${plural(untold, 'characteristic')} ${untold === 1 ? 'has' : 'have'} no reason text: a submission needs them all, and they cannot be added to a version.`;
+  return `Data, bins, fit, points and settings become a version with a fingerprint. Nobody can change it afterwards; a change is a new version.${gap}`;
+}
+
 export interface AtCutOff {
   readonly approved: number;
   /** Bad rate among the approved; null when nobody is approved. */

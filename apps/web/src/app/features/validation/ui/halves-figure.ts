@@ -17,7 +17,7 @@ import { halfNumber, halvesFinding, meetWords, methodName, shownRows } from './v
       <ts-figure title="The two halves" [finding]="finding()" [table]="table()">
         <svg [attr.viewBox]="'0 0 ' + layout().width + ' ' + (layout().height + 24)" [attr.width]="layout().width" [attr.height]="layout().height + 24">
           <svg:text x="1" y="13">{{ layout().narrow ? 'Modeller' : 'Modeller’s half, as frozen' }}</svg:text>
-          <svg:text class="end" [attr.x]="layout().width - 1" y="13">{{ layout().narrow ? 'Validator' : validator() }}</svg:text>
+          <svg:text class="end" [attr.x]="layout().width - 1" y="13">{{ layout().narrow ? 'Replication' : replicated() }}</svg:text>
           <svg:g transform="translate(0,24)">
             <svg:path class="half" [attr.d]="left()" />
             <svg:path class="half" [attr.d]="right()" />
@@ -115,9 +115,9 @@ export class HalvesFigure {
   private readonly shown = computed(() => shownRows(this.replication().rows, this.all() ? 'all' : 'coefficients'));
   protected readonly pointRows = computed(() => this.replication().rows.length - shownRows(this.replication().rows, 'coefficients').length);
   protected readonly finding = computed(() => halvesFinding(this.replication()));
-  protected readonly validator = computed(() => {
+  protected readonly replicated = computed(() => {
     const { method, by, at } = this.replication();
-    return `Validator’s half: ${methodName(method)}, ${by}, ${moment(at)}`;
+    return `The other half: ${methodName(method)}, ${by}, ${moment(at)}`;
   });
   protected readonly layout = computed(() => halvesLayout(this.shown(), Math.max(300, this.width())));
   protected readonly left = computed(() => modellersHalf(this.layout()));
@@ -146,7 +146,7 @@ export class HalvesFigure {
     const columns: Column<HalvesRow>[] = [
       { key: 'label', label: 'Number', value: (row) => row.label },
       { key: 'modeller', label: 'Modeller', kind: 'number', value: (row) => row.modeller, format: (row) => halfNumber(row.modeller) },
-      { key: 'validator', label: 'Validator', kind: 'number', value: (row) => row.validator, format: (row) => halfNumber(row.validator) },
+      { key: 'validator', label: 'Replication', kind: 'number', value: (row) => row.validator, format: (row) => halfNumber(row.validator) },
       { key: 'difference', label: 'Difference', kind: 'number', value: (row) => row.difference },
       { key: 'tolerance', label: 'Allowed', kind: 'number', value: (row) => row.tolerance },
       { key: 'meets', label: 'Meets', value: (row) => row.meets },

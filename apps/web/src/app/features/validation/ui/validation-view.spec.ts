@@ -33,6 +33,7 @@ describe('a number of the two halves', () => {
   });
   it('adds up to a sentence', () => {
     expect(plain(halvesFinding(replication()))).toBe('All 2 155 numbers meet, to 4e-13 at most, and 1 000 scores are equal.');
+    expect(plain(halvesFinding(replication({ largestDifference: 0 })))).toBe('All 2 155 numbers are equal, and 1 000 scores are equal.');
     expect(plain(halvesFinding(replication({ matches: false, differing: 1, largestDifference: 0.021, scoresEqual: false })))).toBe(
       '1 number of 2 155 does not meet; the largest difference is 0.021, and of 1 000 scores some differ.',
     );

@@ -28,7 +28,7 @@ export function shownRows(rows: readonly HalvesRow[], shown: HalvesShown): Halve
 export function halvesFinding(replication: Replication): string {
   const { matches, compared, differing, largestDifference, scoresCompared, scoresEqual } = replication;
   const scores = scoresEqual ? `${count(scoresCompared)} scores are equal` : `of ${count(scoresCompared)} scores some differ`;
-  if (matches) return `All ${count(compared)} numbers meet, to ${significant(largestDifference, 1)} at most, and ${scores}.`;
+  if (matches) return `All ${count(compared)} numbers ${largestDifference === 0 ? 'are equal' : `meet, to ${significant(largestDifference, 1)} at most`}, and ${scores}.`;
   return `${plural(differing, 'number')} of ${count(compared)} ${differing === 1 ? 'does' : 'do'} not meet; the largest difference is ${significant(largestDifference, 2)}, and ${scores}.`;
 }
 
