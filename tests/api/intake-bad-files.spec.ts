@@ -18,7 +18,7 @@ const rows = (count: number, make: (row: number) => string): string =>
   Array.from({ length: count }, (_, row) => make(row)).join('\n');
 const file = (header: string, count: number, make: (row: number) => string): string => `${header}\n${rows(count, make)}\n`;
 
-async function preview(bytes: string | Buffer, choices: object = {}): Promise<Preview & { path: string }> {
+async function preview(bytes: string | Buffer, choices: Record<string, unknown> = {}): Promise<Preview & { path: string }> {
   const { id } = await modeller.upload(modelId, Buffer.isBuffer(bytes) ? bytes : Buffer.from(bytes));
   const path = `/api/models/${modelId}/samples/${id}`;
   const { body } = await modeller.post(`${path}/preview`).send(choices).expect(200);
@@ -26,7 +26,7 @@ async function preview(bytes: string | Buffer, choices: object = {}): Promise<Pr
 }
 
 /** Reads under the proposed choices and gives the problems that the sample is left with. */
-async function refused(bytes: string | Buffer, choices: object = {}): Promise<ProblemItem[]> {
+async function refused(bytes: string | Buffer, choices: Record<string, unknown> = {}): Promise<ProblemItem[]> {
   const { path, run } = await modeller.sample(modelId, bytes, choices);
   expect(run).toMatchObject({ state: 'failed', problem: { code: 'file-refused' } });
   const { body } = await modeller.get(path).expect(200);
@@ -131,7 +131,7 @@ describe('rows and headers', () => {
 });
 
 describe('numbers and dates', () => {
-  const columnsOf = async (text: string, choices: object = {}) => {
+  const columnsOf = async (text: string, choices: Record<string, unknown> = {}) => {
     const { path } = await modeller.sample(modelId, text, choices);
     return (await modeller.get(`${path}/columns`).expect(200)).body.columns as {
       kind: string;

@@ -83,7 +83,7 @@ async function submitItems(sequelize: Sequelize, { version, specification, resul
       label: 'Each manual bin edit has a reason',
       holds: edits.length === 0,
       detail: edits.length === 0 ? 'Every edit by hand says why.' : `Without a reason: ${edits.map(({ column, what }) => `${column} (${what})`).join('; ')}.`,
-      path: edits.length === 0 ? `${model}/binning/${version.binningId}` : `${model}/binning/${version.binningId}/characteristics/${edits[0].characteristicId}`,
+      path: edits.length === 0 ? `${model}/binning/${version.binningId}` : `${model}/binning/${version.binningId}/${edits[0].characteristicId}`,
     },
     {
       code: 'special-codes-mapped',

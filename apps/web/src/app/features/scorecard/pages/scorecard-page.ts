@@ -26,7 +26,7 @@ import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { showInvalid } from '../../../ui/show-invalid';
 import { Scorecards } from '../data/scorecards';
-import { ApplicantForm } from '../ui/applicant-form';
+import { ApplicantForm } from './applicant-form';
 import { PointsList } from '../ui/points-list';
 import { ScoreFigure } from '../ui/score-figure';
 import {

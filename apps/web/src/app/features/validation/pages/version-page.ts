@@ -12,8 +12,8 @@ import { stateTone } from '../../../ui/version-state';
 import { Versions } from '../data/versions';
 import { GateList } from '../ui/gate-list';
 import { LifeLine } from '../ui/life-line';
-import { TextsEditor } from '../ui/texts-editor';
-import { VersionActs } from '../ui/version-acts';
+import { TextsEditor } from './texts-editor';
+import { VersionActs } from './version-acts';
 import { gateAhead, versionFinding } from '../ui/version-view';
 
 /** One version: its state and life, what stands before its next act, the author's texts, and the hashes it can be told by. */

@@ -11,7 +11,7 @@ import { DecisionNotice } from '../../../ui/decision-notice';
 import { moment } from '../../../ui/numbers';
 import { ProblemList } from '../../../ui/problem-list';
 import { Versions } from '../data/versions';
-import { type TextConflict, mergeTexts, textSections } from './version-view';
+import { type TextConflict, mergeTexts, textSections } from '../ui/version-view';
 
 const control = () => new FormControl('', { nonNullable: true });
 

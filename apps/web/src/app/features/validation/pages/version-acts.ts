@@ -8,7 +8,7 @@ import { Ask } from '../../../ui/ask';
 import { DecisionNotice } from '../../../ui/decision-notice';
 import { ProblemList } from '../../../ui/problem-list';
 import { Versions } from '../data/versions';
-import { gateAhead, missing } from './version-view';
+import { gateAhead, missing } from '../ui/version-view';
 
 /** What this person may do with a version now, and why not where they might expect to. The one thing to decide on the page. */
 @Component({
@@ -124,7 +124,7 @@ export class VersionActs {
   }
 
   protected async conclude(): Promise<void> {
-    const [{ MatDialog }, { ConcludeDialog }] = await Promise.all([import('@angular/material/dialog'), import('./conclude-dialog')]);
+    const [{ MatDialog }, { ConcludeDialog }] = await Promise.all([import('@angular/material/dialog'), import('../ui/conclude-dialog')]);
     const dialog = this.injector.get(MatDialog).open<InstanceType<typeof ConcludeDialog>, never, NewAct>(ConcludeDialog, { width: '600px' });
     const act = await firstValueFrom(dialog.afterClosed());
     if (act) await this.send(act);
