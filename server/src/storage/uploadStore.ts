@@ -90,7 +90,7 @@ export class UploadStore extends DataStore {
     let at = offset;
     let pieces: Buffer[] = [];
     let waiting = 0;
-    let broken: unknown = null;
+    let broken: Error | null = null;
 
     const flush = async (): Promise<void> => {
       const bytes = Buffer.concat(pieces, waiting);
@@ -116,7 +116,7 @@ export class UploadStore extends DataStore {
       }
     } catch (cause) {
       if (cause instanceof UploadFault || waiting === 0) throw cause;
-      broken = cause;
+      broken = cause instanceof Error ? cause : new Error(String(cause));
     }
     // What has arrived is kept when the connection breaks: it need not be sent again.
     if (waiting > 0) await flush();

@@ -40,7 +40,7 @@ export function uploadRoutes(): Route[] {
 
 type UploadEndpoint = typeof endpoints.askUpload | typeof endpoints.sendUpload | typeof endpoints.dropUpload;
 
-async function findUploadOf({ context, params }: Call<UploadEndpoint, 'signed-in'>) {
+async function findUploadOf({ context, params }: Pick<Call<UploadEndpoint, 'signed-in'>, 'context' | 'params'>) {
   const model = await findModel(context.sequelize, params.modelId);
   const upload = model && (await findUpload(context, model.id, params.uploadId));
   return upload ? { model, upload } : null;

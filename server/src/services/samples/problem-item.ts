@@ -9,11 +9,14 @@ export function problemItem(problem: ReadingProblem | ReplayProblem): ProblemIte
   const where: Where = {};
   for (const [key, value] of Object.entries(problem.where) as [string, unknown][]) {
     if (value === undefined) continue;
-    if (Array.isArray(value))
-      where[key] = value
-        .map((one) => (typeof one === 'object' ? `${JSON.stringify(one.value)} ${one.rows}` : String(one)))
-        .join(', ');
+    if (Array.isArray(value)) where[key] = value.map(written).join(', ');
     else if (typeof value === 'string' || typeof value === 'number' || typeof value === 'boolean') where[key] = value;
   }
   return { code: problem.code, message: problem.message, where };
+}
+
+/** A line number, or a value with its rows. */
+function written(one: unknown): string {
+  if (typeof one !== 'object' || one === null || !('value' in one) || !('rows' in one)) return String(one);
+  return `${JSON.stringify(one.value)} ${String(one.rows)}`;
 }

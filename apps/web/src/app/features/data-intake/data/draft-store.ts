@@ -1,7 +1,7 @@
 import { DestroyRef, Injectable, computed, inject, signal } from '@angular/core';
-import { Problem, asProblem } from '../../../core/http/problem';
+import { type Problem, asProblem } from '../../../core/http/problem';
 import { isStale } from '../../../core/http/etag';
-import { Draft, DraftCheck, DraftContent, Samples } from './samples';
+import { type Draft, type DraftCheck, type DraftContent, Samples } from './samples';
 
 export type SaveState = 'saved' | 'unsaved' | 'saving' | 'stale' | 'failed';
 

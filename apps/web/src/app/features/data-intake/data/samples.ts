@@ -1,4 +1,4 @@
-import { HttpClient, HttpResourceRef, httpResource } from '@angular/common/http';
+import { HttpClient, type HttpResourceRef, httpResource } from '@angular/common/http';
 import { Injectable, inject } from '@angular/core';
 import type { ColumnList, ColumnProfile, ColumnRole } from '@tallystone/contracts/samples/columns';
 import type {
@@ -14,7 +14,7 @@ import type { Preview, PreviewRequest, ReadingChoices } from '@tallystone/contra
 import type { Sample, SampleList, SampleSummary, UploadSummary } from '@tallystone/contracts/samples/schema';
 import type { Run } from '@tallystone/contracts/runs/schema';
 import { firstValueFrom } from 'rxjs';
-import { Tagged, idempotent, readTagged, saveTagged } from '../../../core/http/etag';
+import { type Tagged, idempotent, readTagged, saveTagged } from '../../../core/http/etag';
 
 export type {
   ColumnList,

@@ -12,12 +12,12 @@ import {
 import { MatButtonModule } from '@angular/material/button';
 import { Router, RouterLink } from '@angular/router';
 import { warnBeforeUnload } from '../../../core/unsaved-changes';
-import { Column } from '../../../ui/column';
-import { CellTemplate, DenseTable, TableSort } from '../../../ui/dense-table';
+import { type Column } from '../../../ui/column';
+import { CellTemplate, DenseTable, type TableSort } from '../../../ui/dense-table';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { DraftStore } from '../data/draft-store';
-import { ColumnProfile, columnsOf, oneSample } from '../data/samples';
+import { type ColumnProfile, columnsOf, oneSample } from '../data/samples';
 import { ColumnEditor } from '../ui/column-editor';
 import { flagsOf, mostFrequentOf, rangeOf } from '../ui/findings';
 import { SampleSteps } from '../ui/sample-steps';
@@ -133,7 +133,7 @@ export class ColumnsPage {
   readonly column = input<string>();
   readonly sort = input<string>();
 
-  private readonly editor = viewChild(ColumnEditor, { read: ElementRef<HTMLElement> });
+  private readonly editor = viewChild<ColumnEditor, ElementRef<HTMLElement>>(ColumnEditor, { read: ElementRef });
   protected readonly sample = oneSample(
     () => this.modelId(),
     () => this.sampleId(),

@@ -17,7 +17,7 @@ import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { DraftStore } from '../data/draft-store';
-import { ColumnProfile, Samples, columnsOf, definitionsOf, oneSample } from '../data/samples';
+import { type ColumnProfile, Samples, columnsOf, definitionsOf, oneSample } from '../data/samples';
 import { ExclusionList } from '../ui/exclusion-list';
 import { countsFinding } from '../ui/findings';
 import { OutcomeEditor } from '../ui/outcome-editor';

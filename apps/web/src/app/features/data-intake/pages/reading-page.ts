@@ -12,7 +12,7 @@ import { Ask } from '../../../ui/ask';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
-import { Preview, ReadingChoices, Samples, oneSample } from '../data/samples';
+import { type Preview, type ReadingChoices, Samples, oneSample } from '../data/samples';
 import { readingFinding } from '../ui/findings';
 import { PreviewTable } from '../ui/preview-table';
 import { ReadingForm } from '../ui/reading-form';

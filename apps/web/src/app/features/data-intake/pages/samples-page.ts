@@ -6,14 +6,14 @@ import { filter } from 'rxjs';
 import { CurrentModel } from '../../../core/current-model';
 import { Runs } from '../../../core/events/runs';
 import { Ask } from '../../../ui/ask';
-import { Column } from '../../../ui/column';
+import { type Column } from '../../../ui/column';
 import { CellTemplate, DenseTable } from '../../../ui/dense-table';
 import { bytes, share } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { StatusMark, type StatusTone } from '../../../ui/status-mark';
-import { SampleSummary, Samples, UploadSummary, sampleList } from '../data/samples';
+import { type SampleSummary, Samples, type UploadSummary, sampleList } from '../data/samples';
 import { Uploads } from '../data/uploads';
 import { samplesFinding } from '../ui/findings';
 import { UploadPanel } from '../ui/upload-panel';
@@ -38,7 +38,7 @@ import { UploadPanel } from '../ui/upload-panel';
           (file)="send($event)"
           (stop)="uploads.stop()"
           (goOn)="uploads.goOn()"
-          (drop)="drop()"
+          (dropped)="drop()"
         />
       }
       @if (unfinished().length > 0) {

@@ -3,7 +3,7 @@ import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
 import { axisBottom } from 'd3-axis';
 import { scaleBand, scaleLinear } from 'd3-scale';
 import { AxisDirective } from '../../../ui/axis';
-import { Column } from '../../../ui/column';
+import { type Column } from '../../../ui/column';
 import { ElementWidth } from '../../../ui/element-width';
 import { FigureFrame, FigurePoint } from '../../../ui/figure-frame';
 import { count, plural, share } from '../../../ui/numbers';

@@ -5,7 +5,7 @@ import { MatInputModule } from '@angular/material/input';
 import { MatSelectModule } from '@angular/material/select';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
 import type { ExclusionRule } from '@tallystone/contracts/samples/definition';
-import { Condition, conditionOf, conditions, testWith, valueOf } from './exclusion-test';
+import { type Condition, conditionOf, conditions, testWith, valueOf } from './exclusion-test';
 
 /** Rules that take rows out, in the order in which they are asked; a row counts at the first that takes it out. */
 @Component({

@@ -5,7 +5,7 @@ import { MatSelectModule } from '@angular/material/select';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
 import type { DraftContent, DraftOutcome } from '@tallystone/contracts/samples/definition';
 import { count } from '../../../ui/numbers';
-import { MappedValue, Meaning, ValueMapping } from './value-mapping';
+import { type MappedValue, type Meaning, ValueMapping } from './value-mapping';
 
 const meanings: readonly Meaning[] = [
   { key: 'good', label: 'Good' },

@@ -5,7 +5,7 @@ import { MatInputModule } from '@angular/material/input';
 import { MatRadioModule } from '@angular/material/radio';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
 import type { DraftPartition } from '@tallystone/contracts/samples/definition';
-import { MappedValue, Meaning, ValueMapping } from './value-mapping';
+import { type MappedValue, type Meaning, ValueMapping } from './value-mapping';
 
 const parts: readonly Meaning[] = [
   { key: 'development', label: 'Development' },

@@ -1,6 +1,6 @@
 import { ChangeDetectionStrategy, Component, computed, input } from '@angular/core';
 import type { DefinitionCounts } from '@tallystone/contracts/samples/definition';
-import { Column } from '../../../ui/column';
+import { type Column } from '../../../ui/column';
 import { CellTemplate, DenseTable } from '../../../ui/dense-table';
 import { PartitionMark, partitionName, type Partition } from '../../../ui/partition-mark';
 

@@ -1,6 +1,6 @@
 import { ChangeDetectionStrategy, Component, computed, input } from '@angular/core';
 import type { Preview } from '@tallystone/contracts/samples/reading';
-import { Column } from '../../../ui/column';
+import { type Column } from '../../../ui/column';
 import { DenseTable } from '../../../ui/dense-table';
 import { count } from '../../../ui/numbers';
 

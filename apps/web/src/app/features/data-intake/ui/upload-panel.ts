@@ -38,7 +38,7 @@ export interface UploadView {
           } @else {
             <button matButton="outlined" type="button" (click)="goOn.emit()">Go on</button>
           }
-          <button matButton type="button" (click)="drop.emit()">Drop it</button>
+          <button matButton type="button" (click)="dropped.emit()">Drop it</button>
         </div>
       </div>
     } @else {
@@ -47,7 +47,7 @@ export interface UploadView {
         [class.over]="over()"
         (dragover)="hover($event, true)"
         (dragleave)="hover($event, false)"
-        (drop)="dropped($event)"
+        (drop)="letGo($event)"
       >
         <p>Drop a CSV file here, or choose one. Up to 1&nbsp;GiB, 1&#8239;000&#8239;000 rows and 200 columns.</p>
         <div class="ts-actions">
@@ -100,7 +100,7 @@ export class UploadPanel {
   readonly file = output<File>();
   readonly stop = output();
   readonly goOn = output();
-  readonly drop = output();
+  readonly dropped = output();
   protected readonly over = signal(false);
 
   protected readonly percent = computed(() => {
@@ -122,7 +122,7 @@ export class UploadPanel {
     this.over.set(over);
   }
 
-  protected dropped(event: DragEvent): void {
+  protected letGo(event: DragEvent): void {
     event.preventDefault();
     this.over.set(false);
     const file = event.dataTransfer?.files.item(0);

@@ -1,7 +1,7 @@
 import { ChangeDetectionStrategy, Component, computed, input, signal } from '@angular/core';
 import type { DefinitionCounts, WaterfallStep } from '@tallystone/contracts/samples/definition';
 import { scaleLinear } from 'd3-scale';
-import { Column } from '../../../ui/column';
+import { type Column } from '../../../ui/column';
 import { ElementWidth } from '../../../ui/element-width';
 import { FigureFrame, FigurePoint } from '../../../ui/figure-frame';
 import { MINUS, count, plural, share } from '../../../ui/numbers';
