@@ -1,4 +1,4 @@
-import { wilsonInterval } from '../metrics/intervals';
+import { wilsonInterval } from '../metrics/wilson';
 import { weightOfEvidence, type Smoothing } from '../binning/weight-of-evidence';
 import { binLabels } from './labels';
 import { binOfSlots, coarseCount, layoutOf, sumSlots, type BinSums } from './slots';

@@ -2,31 +2,11 @@
  * Distribution functions by @stdlib, wrapped so that a tail is always computed as a tail: 1 - cdf loses every digit where tests are decided.
  */
 import betainc from '@stdlib/math-base-special-betainc';
-import erfc from '@stdlib/math-base-special-erfc';
 import gammainc from '@stdlib/math-base-special-gammainc';
 import betaQuantileOf from '@stdlib/stats-base-dists-beta-quantile';
-import normalQuantileOf from '@stdlib/stats-base-dists-normal-quantile';
 import { requireThat } from '../checks';
 
-/** P(Z <= z) of the standard normal. @example normalCdf(1.96) // 0.975002 */
-export function normalCdf(z: number): number {
-  return 0.5 * erfc(-z / Math.SQRT2);
-}
-
-/** P(Z > z) of the standard normal. @example normalTail(1.6448536269514722) // 0.05 */
-export function normalTail(z: number): number {
-  return 0.5 * erfc(z / Math.SQRT2);
-}
-
-/** Two-sided p-value of a standard normal statistic. */
-export function normalTwoSided(z: number): number {
-  return erfc(Math.abs(z) / Math.SQRT2);
-}
-
-/** z with P(Z <= z) = p. @example normalQuantile(0.975) // 1.959964 */
-export function normalQuantile(p: number): number {
-  return normalQuantileOf(p, 0, 1);
-}
+export { normalCdf, normalQuantile, normalTail, normalTwoSided } from './normal';
 
 /** P(X > x) of the chi-square with `degreesOfFreedom`. @example chiSquareTail(3.841458820694124, 1) // 0.05 */
 export function chiSquareTail(x: number, degreesOfFreedom: number): number {
