@@ -225,7 +225,7 @@ function recorded(history: readonly HistoryLine[], version: FoundVersion, entry:
 const interval = (lower: number | null, upper: number | null): { lower: number; upper: number } | null => (lower === null || upper === null ? null : { lower, upper });
 
 function waterfallOf(sample: { content: SampleEvidence; number: string }, specification: Specification, result: Result): DocumentInput['waterfall'] {
-  const steps = result.counts.excluded.map(({ reason, rows: taken, bads }) => ({ reason, rows: taken, bads: bads }));
+  const steps: NonNullable<DocumentInput['waterfall']>['steps'] = result.counts.excluded.map(({ reason, rows: taken, bads }) => ({ reason, rows: taken, bads }));
   if (specification.declined) steps.push({ reason: 'Declined applications, outcome not known', rows: result.counts.declined, bads: null });
   return { evidence: sample.number, sourceRows: sample.content.rows, steps };
 }

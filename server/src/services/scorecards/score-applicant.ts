@@ -1,3 +1,4 @@
+import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import type { Applicant, ScoredApplicant } from '@tallystone/contracts/scorecards/schema';
 import { type Points, probabilityOfBad, roundAwayFromZero } from '@tallystone/numeric';
 import type { Sequelize } from 'sequelize';
@@ -69,7 +70,9 @@ function codesOf(loaded: LoadedScorecard, { fields }: Applicant): number[] {
     if (!(error instanceof ReplayError)) throw error;
     throw invalid([
       ...problems,
-      ...error.problems.map(({ code, message, where }) => ({ code, message, where: (typeof where.column === 'string' ? { field: where.column } : {}) })),
+      ...error.problems.map(
+        ({ code, message, where }): ProblemItem => ({ code, message, where: typeof where.column === 'string' ? { field: where.column } : {} }),
+      ),
     ]);
   }
 }

@@ -1,4 +1,5 @@
 import type { ModelState } from '@tallystone/contracts/models/schema';
+import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import type { Gate, NewAct } from '@tallystone/contracts/versions/schema';
 import type { Transaction } from 'sequelize';
 import type { z } from 'zod';
@@ -65,7 +66,7 @@ export async function actOnVersion(context: Context, tx: Transaction, version: F
       throw conflict(
         'gate-closed',
         `${missing.length === 1 ? 'One thing stands' : `${missing.length} things stand`} in the way.`,
-        missing.map(({ code, label, detail, path }) => ({ code, message: `${label}: ${detail}`, where: (path === null ? {} : { path }) })),
+        missing.map(({ code, label, detail, path }): ProblemItem => ({ code, message: `${label}: ${detail}`, where: path === null ? {} : { path } })),
       );
     }
   }

@@ -1,5 +1,5 @@
 import { smallScorecard } from '../testing/scorecard';
-import { categoriesOf } from './applicant-form';
+import { categoriesOf } from '../pages/applicant-form';
 import { fillSettings, holdToBands, settingsForm, settingsOf } from './settings-form';
 
 const { settings } = smallScorecard;

@@ -1,7 +1,7 @@
 import { frozen } from '../testing/version';
 import { conditionsOf } from './conclude-dialog';
 import { linkOf } from './gate-list';
-import { decisionOf } from './version-acts';
+import { decisionOf } from '../pages/version-acts';
 import { gateAhead, gateWords, mergeTexts, missing, reviewsFinding, versionFinding, versionsFinding } from './version-view';
 
 describe('the gate ahead', () => {
