@@ -44,6 +44,9 @@ class NoResize {
   observe(): void {
     /* never resized */
   }
+  unobserve(): void {
+    /* never observed */
+  }
   disconnect(): void {
     /* nothing to stop */
   }
@@ -51,9 +54,10 @@ class NoResize {
 
 describe('the binning figure', () => {
   beforeEach(() => {
-    globalThis.ResizeObserver ??= NoResize as unknown as typeof ResizeObserver;
+    vi.stubGlobal('ResizeObserver', globalThis.ResizeObserver ?? NoResize);
     Element.prototype.setPointerCapture ??= () => undefined;
   });
+  afterEach(() => vi.unstubAllGlobals());
 
   const setUp = async (characteristic = utilisation) => {
     const fixture = TestBed.createComponent(Host);

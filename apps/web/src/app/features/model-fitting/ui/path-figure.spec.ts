@@ -14,15 +14,18 @@ class NoResize {
   observe(): void {
     /* never resized */
   }
+  unobserve(): void {
+    /* never observed */
+  }
   disconnect(): void {
     /* nothing to stop */
   }
 }
 
 describe('the three-part figure', () => {
-  beforeEach(() => {
-    globalThis.ResizeObserver ??= NoResize as unknown as typeof ResizeObserver;
-  });
+  // Only where there is none, and only while these tests run: other specs share this window.
+  beforeEach(() => vi.stubGlobal('ResizeObserver', globalThis.ResizeObserver ?? NoResize));
+  afterEach(() => vi.unstubAllGlobals());
 
   const setUp = async () => {
     const fixture = TestBed.createComponent(Host);
