@@ -335,7 +335,7 @@ test('compliance makes the document, whose text holds the API’s numbers, and a
   const dense = text.replace(/\s+/g, '');
   expect(dense).toContain(version.fingerprint);
   const { development, holdOut, outOfTime } = result.metrics;
-  const aucs = [development, holdOut!, outOfTime!].map(({ auc }) => auc.toFixed(3));
+  const aucs = [development, holdOut, outOfTime].map((metrics) => String(metrics?.auc.toFixed(3)));
   expect(text).toMatch(new RegExp(`AUC +${aucs.join(' +')}`));
   for (const { lower, upper } of work.performance) {
     expect(text).toContain(lower!.toFixed(3));
