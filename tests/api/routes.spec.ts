@@ -2,36 +2,63 @@ import { randomUUID } from 'node:crypto';
 import { type Role, roles } from '@tallystone/contracts/people/schema';
 import supertest from 'supertest';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
-import { inTransaction } from '../../server/src/database/transaction';
-import { startRun } from '../../server/src/jobs/start-run';
-import { verifyRecordJob } from '../../server/src/jobs/definitions/record';
 import { allRoutes } from '../../server/src/routes/index';
+import { applicantsWithRisk, characteristicsOf, classApplicants, defineApplicants } from '../support/binned';
 import { IntakeServer, Visitor } from '../support/intake';
+import { choose, fitPath, freeze, makeDocument, scale } from '../support/line';
 import { accessTable } from './access/index';
 import type { AccessRow, ByRole, Subject, Verdict } from './access/access';
 
 let server: IntakeServer;
 const visitors = new Map<Role, Visitor>();
+/** A modeller who works on another model than the table's: to them all of it is another's. */
+let outsider: Visitor;
 let disabled: Visitor;
-/** Identifiers by subject and name of the path's parameter. */
-const world: Record<Subject, Record<string, string>> = { own: {}, another: {}, nonexistent: {} };
+/** Identifiers by the name of the path's parameter: one model with everything that a model has, made by the table's modeller. */
+let world: Record<string, string>;
 
 beforeAll(async () => {
-  server = await IntakeServer.start({ worker: false });
+  server = await IntakeServer.start();
   for (const role of roles) visitors.set(role, await server.signIn(role, role));
   disabled = await server.signIn('disabled', 'modeller', 'admin');
   await server.context.pool.query(`UPDATE people SET state = 'disabled' WHERE id = $1`, [disabled.personId]);
-  const other = await server.signIn('other', 'modeller');
-  const bystander = await server.signIn('bystander');
-  const csv = Buffer.from('a,bad\n1,0\n2,1\n');
-  for (const [subject, maker] of [['own', visitors.get('modeller')!], ['another', other]] as const) {
-    world[subject].modelId = await maker.model(`${subject} model`);
-    world[subject].sampleId = (await maker.upload(world[subject].modelId, csv)).id;
-    world[subject].personId = bystander.personId;
-    world[subject].runId = await inTransaction(server.context.sequelize, async (tx) => (await startRun(server.context, tx, verifyRecordJob, { payload: {}, person: { id: maker.personId } })).id);
-  } // prettier-ignore
-});
+  outsider = await server.signIn('other', 'modeller');
+  await outsider.model('Another model');
+  world = await wholeModel(visitors.get('modeller')!, (await server.signIn('bystander')).personId);
+}, 240_000);
 afterAll(() => server.stop());
+
+/** A model of this modeller's with a row of every kind, from an upload under way to a document. */
+async function wholeModel(modeller: Visitor, personId: string): Promise<Record<string, string>> {
+  const modelId = await modeller.model('A whole model');
+  const { definitionId, sampleId } = await defineApplicants(modeller, modelId, applicantsWithRisk(800));
+  // Nothing rests on this one: it can be read anew and discarded.
+  const spare = await modeller.upload(modelId, Buffer.from('a,bad\n1,0\n2,1\n'));
+  const begun = await modeller.beginUpload(modelId, 10).expect(201);
+  const binning = await classApplicants(modeller, modelId, definitionId);
+  const { characteristics } = await characteristicsOf(modeller, binning.id);
+  const fit = await fitPath(modeller, modelId, binning.id, { lambda: { count: 5, smallestRatio: 0.01, earlyStop: false }, folds: { count: 3, seed: 1, classing: 'once' } });
+  const second = await fitPath(modeller, modelId, binning.id, { name: 'Ridge', mixing: 0, lambda: { count: 5, smallestRatio: 0.01, earlyStop: false }, folds: { count: 3, seed: 1, classing: 'once' } });
+  for (const { id } of [fit, second]) await choose(modeller, id, { index: 4, rule: 'by hand', reason: 'as an example' });
+  await scale(modeller, fit.id);
+  const version = await freeze(modeller, modelId, fit.id);
+  const { documentId } = await makeDocument(modeller, version.id);
+  return {
+    modelId,
+    sampleId,
+    spareSampleId: spare.id,
+    uploadId: begun.headers.location.split('/').at(-1)!,
+    definitionId,
+    binningId: binning.id,
+    characteristicId: characteristics[0].id,
+    fitId: fit.id,
+    secondFitId: second.id,
+    versionId: version.id,
+    documentId,
+    personId,
+    runId: fit.runId!,
+  };
+} // prettier-ignore
 
 const name = ({ endpoint }: { endpoint: { method: string; path: string } }): string => `${endpoint.method} ${endpoint.path}`;
 
@@ -59,14 +86,24 @@ describe('the table', () => {
     for (const row of accessTable) {
       const said = [row.own, row.another, row.nonexistent].filter((verdicts) => verdicts !== undefined);
       expect(said.length, row.route).toBeGreaterThan(0);
-      // A path about a row is also asked about one that is not there.
+      // A path about a row is also asked about one that is not there, and about one that is somebody else's.
       if (row.route.includes('/:')) expect(row.nonexistent, row.route).toBeDefined();
+      if (/:(model|upload|definition|binning|characteristic|fit|version|document|run)Id/.test(row.route)) {
+        expect(row.own, row.route).toBeDefined();
+        expect(row.another, row.route).toBeDefined();
+      }
     }
   });
 });
 
 function pathOf(row: AccessRow, subject: Subject): string {
-  return row.route.split(' ')[1].replace(/:(\w+)/g, (_, parameter: string) => world[subject][parameter] ?? randomUUID());
+  const path = row.route.split(' ')[1].replace(/:(\w+)/g, (_, parameter: string) => {
+    if (subject === 'nonexistent') return randomUUID();
+    const id = world[row.params?.[parameter] ?? parameter];
+    if (id === undefined) throw new Error(`${row.route}: the world has no ${parameter}`);
+    return id;
+  });
+  return row.query ? `${path}?${row.query(world)}` : path;
 }
 
 function ask(visitor: Visitor, row: AccessRow, subject: Subject): supertest.Test {
@@ -111,6 +148,10 @@ async function statusOf(request: supertest.Test): Promise<number> {
   }
 }
 
+/** The table's people; to a row that is another's comes the modeller of another model. */
+const visitorOf = (role: Role, subject: Subject): Visitor =>
+  subject === 'another' && role === 'modeller' ? outsider : visitors.get(role)!;
+
 describe.each(accessTable.filter(({ route }) => !aboutCredentials.has(route)).map((row) => [row.route, row] as const))(
   '%s',
   (_route, row) => {
@@ -131,7 +172,7 @@ describe.each(accessTable.filter(({ route }) => !aboutCredentials.has(route)).ma
         // Refusals first: who is let in may change what the next would find.
         const order = [...roles].sort((a, b) => Number(verdicts[a] === 'yes') - Number(verdicts[b] === 'yes'));
         for (const role of order)
-          hold(await statusOf(ask(visitors.get(role)!, row, which)), verdicts[role], `${role} ${row.route} (${which})`);
+          hold(await statusOf(ask(visitorOf(role, which), row, which)), verdicts[role], `${role} ${row.route} (${which})`);
       }
     });
   },

@@ -8,8 +8,8 @@ export type ByRole = Readonly<Record<Role, Verdict>>;
 export type Subject = 'own' | 'another' | 'nonexistent';
 
 /**
- * One route of the route x role table. `own` is a model that the table's modeller works on (and what belongs to it), `another` one of
- * another modeller, `nonexistent` a row that is not there. A route without identifiers in its path has `own` alone.
+ * One route of the route x role table. `own` is a row of a model that the table's modeller works on, `another` the same row asked for by the
+ * modeller of another model, `nonexistent` a row that is not there. A route without identifiers in its path has `own` alone.
  */
 export interface AccessRow {
   readonly route: string;
@@ -20,6 +20,8 @@ export interface AccessRow {
   readonly headers?: Readonly<Record<string, string>>;
   /** Names of path parameters that stand for something else than the row's subject: taken from the world under this name. */
   readonly params?: Readonly<Record<string, string>>;
+  /** The query that the route cannot do without, from the world's identifiers. */
+  readonly query?: (world: Readonly<Record<string, string>>) => string;
 }
 
 export const everyRole = (verdict: Verdict): ByRole => ({
@@ -57,5 +59,3 @@ export const developsModel = (route: string, headers?: Readonly<Record<string, s
   nonexistent: gone,
   headers,
 });
-/** Only that nothing is found where nothing is: for rows whose own and another are proven in the entity's own specs. */
-export const findsNothing = (route: string): AccessRow => ({ route, nonexistent: gone });

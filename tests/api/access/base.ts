@@ -39,11 +39,13 @@ export const baseRows: readonly AccessRow[] = [
   signedIn('GET /api/runs'),
   {
     route: 'GET /api/runs/:runId',
+    own: { modeller: 'yes', validator: 'yes', compliance: 'yes', admin: 404, auditor: 'yes' },
     another: { modeller: 404, validator: 'yes', compliance: 'yes', admin: 404, auditor: 'yes' },
     nonexistent: everyRole(404),
   },
   {
     route: 'POST /api/runs/:runId/cancel',
+    own: { modeller: 'yes', validator: 403, compliance: 403, admin: 404, auditor: 403 },
     another: { modeller: 404, validator: 403, compliance: 403, admin: 404, auditor: 403 },
     nonexistent: everyRole(404),
   },

@@ -1,8 +1,8 @@
-import { type AccessRow, everyRole, findsNothing } from './access';
+import { type AccessRow, everyRole, readsModel } from './access';
 
 export const documentRows: readonly AccessRow[] = [
   { route: 'GET /api/documents', own: everyRole('yes') },
-  findsNothing('GET /api/versions/:versionId/documents'),
-  findsNothing('POST /api/versions/:versionId/documents'),
-  findsNothing('GET /api/documents/:documentId/file'),
+  readsModel('GET /api/versions/:versionId/documents'),
+  readsModel('POST /api/versions/:versionId/documents'),
+  readsModel('GET /api/documents/:documentId/file'),
 ];

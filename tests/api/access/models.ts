@@ -1,4 +1,4 @@
-import { type AccessRow, developsModel, everyRole, findsNothing, only, readsModel } from './access';
+import { type AccessRow, developsModel, everyRole, only, readsModel } from './access';
 
 const seen = { modeller: 404, validator: 'yes', compliance: 'yes', admin: 'yes', auditor: 'yes' } as const;
 const edited = { modeller: 404, validator: 403, compliance: 403, admin: 403, auditor: 403 } as const;
@@ -34,22 +34,26 @@ export const modelRows: readonly AccessRow[] = [
 
 const ofSample = '/api/models/:modelId/samples/:sampleId';
 
+const spare = { params: { sampleId: 'spareSampleId' } };
+/** An upload belongs to whoever began it. */
+const ownUpload = (method: string): AccessRow => ({ ...developsModel(`${method} /api/models/:modelId/uploads/:uploadId`), headers: tus });
+
 export const sampleRows: readonly AccessRow[] = [
   developsModel('POST /api/models/:modelId/uploads', { 'Tus-Resumable': '1.0.0' }),
-  { ...findsNothing('HEAD /api/models/:modelId/uploads/:uploadId'), headers: tus },
-  { ...findsNothing('PATCH /api/models/:modelId/uploads/:uploadId'), headers: tus },
-  { ...findsNothing('DELETE /api/models/:modelId/uploads/:uploadId'), headers: tus },
+  ownUpload('HEAD'),
+  ownUpload('PATCH'),
+  ownUpload('DELETE'),
   readsModel('GET /api/models/:modelId/samples'),
   readsModel(`GET ${ofSample}`),
-  developsModel(`POST ${ofSample}/preview`),
-  developsModel(`POST ${ofSample}/readings`),
+  { ...developsModel(`POST ${ofSample}/preview`), ...spare },
+  { ...developsModel(`POST ${ofSample}/readings`), ...spare },
   readsModel(`GET ${ofSample}/columns`),
-  findsNothing(`GET ${ofSample}/draft`),
-  findsNothing(`PUT ${ofSample}/draft`),
-  findsNothing(`POST ${ofSample}/draft/check`),
-  findsNothing(`POST ${ofSample}/definitions`),
+  readsModel(`GET ${ofSample}/draft`),
+  developsModel(`PUT ${ofSample}/draft`),
+  developsModel(`POST ${ofSample}/draft/check`),
+  developsModel(`POST ${ofSample}/definitions`),
   readsModel(`GET ${ofSample}/definitions`),
-  findsNothing(`GET ${ofSample}/definitions/:definitionId`),
-  // Last of its kind: whoever may, discards the table's sample.
-  developsModel(`DELETE ${ofSample}`),
+  readsModel(`GET ${ofSample}/definitions/:definitionId`),
+  // Last of its kind: whoever may, discards the sample.
+  { ...developsModel(`DELETE ${ofSample}`), ...spare },
 ];

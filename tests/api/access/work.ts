@@ -1,30 +1,33 @@
-import { type AccessRow, developsModel, findsNothing, readsModel } from './access';
+import { type AccessRow, developsModel, readsModel } from './access';
 
 const binning = '/api/binnings/:binningId';
 
 export const binningRows: readonly AccessRow[] = [
   readsModel('GET /api/models/:modelId/binnings'),
   developsModel('POST /api/models/:modelId/binnings'),
-  findsNothing(`GET ${binning}`),
-  findsNothing(`GET ${binning}/characteristics`),
-  findsNothing(`POST ${binning}/reclassings`),
-  findsNothing(`POST ${binning}/inclusions`),
-  findsNothing(`GET ${binning}/characteristics/:characteristicId`),
-  findsNothing(`PUT ${binning}/characteristics/:characteristicId`),
-  findsNothing(`POST ${binning}/characteristics/:characteristicId/fine-edges`),
-  findsNothing(`GET ${binning}/characteristics/:characteristicId/edits`),
-  findsNothing('GET /api/sample-definitions/:definitionId/out-of-time'),
-  findsNothing('POST /api/sample-definitions/:definitionId/out-of-time'),
+  readsModel(`GET ${binning}`),
+  readsModel(`GET ${binning}/characteristics`),
+  developsModel(`POST ${binning}/reclassings`),
+  developsModel(`POST ${binning}/inclusions`),
+  readsModel(`GET ${binning}/characteristics/:characteristicId`),
+  developsModel(`PUT ${binning}/characteristics/:characteristicId`),
+  developsModel(`POST ${binning}/characteristics/:characteristicId/fine-edges`),
+  readsModel(`GET ${binning}/characteristics/:characteristicId/edits`),
+  readsModel('GET /api/sample-definitions/:definitionId/out-of-time'),
+  developsModel('POST /api/sample-definitions/:definitionId/out-of-time'),
 ];
 
 export const fitRows: readonly AccessRow[] = [
   readsModel('GET /api/models/:modelId/fits'),
   developsModel('POST /api/models/:modelId/fits'),
-  readsModel('GET /api/models/:modelId/comparison'),
-  findsNothing('GET /api/fits/:fitId'),
-  findsNothing('GET /api/fits/:fitId/path'),
-  findsNothing('PUT /api/fits/:fitId/choice'),
-  findsNothing('GET /api/fits/:fitId/scorecard'),
-  findsNothing('PUT /api/fits/:fitId/scorecard'),
-  findsNothing('POST /api/fits/:fitId/scorecard/applicants'),
+  {
+    ...readsModel('GET /api/models/:modelId/comparison'),
+    query: ({ fitId, secondFitId }) => `fits=${fitId},${secondFitId}`,
+  },
+  readsModel('GET /api/fits/:fitId'),
+  readsModel('GET /api/fits/:fitId/path'),
+  developsModel('PUT /api/fits/:fitId/choice'),
+  readsModel('GET /api/fits/:fitId/scorecard'),
+  developsModel('PUT /api/fits/:fitId/scorecard'),
+  readsModel('POST /api/fits/:fitId/scorecard/applicants'),
 ];
