@@ -6,4 +6,12 @@ import { versionRows } from './versions';
 import { binningRows, fitRows } from './work';
 
 /** The route x role table. An entity adds its rows here; a route without one fails routes.spec.ts. */
-export const accessTable: readonly AccessRow[] = [...baseRows, ...modelRows, ...binningRows, ...fitRows, ...versionRows, ...documentRows, ...sampleRows];
+export const accessTable: readonly AccessRow[] = [
+  ...baseRows,
+  ...modelRows,
+  ...binningRows,
+  ...fitRows,
+  ...versionRows,
+  ...documentRows,
+  ...sampleRows,
+];

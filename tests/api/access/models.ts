@@ -36,7 +36,10 @@ const ofSample = '/api/models/:modelId/samples/:sampleId';
 
 const spare = { params: { sampleId: 'spareSampleId' } };
 /** An upload belongs to whoever began it. */
-const ownUpload = (method: string): AccessRow => ({ ...developsModel(`${method} /api/models/:modelId/uploads/:uploadId`), headers: tus });
+const ownUpload = (method: string): AccessRow => ({
+  ...developsModel(`${method} /api/models/:modelId/uploads/:uploadId`),
+  headers: tus,
+});
 
 export const sampleRows: readonly AccessRow[] = [
   developsModel('POST /api/models/:modelId/uploads', { 'Tus-Resumable': '1.0.0' }),
