@@ -9,7 +9,7 @@ import { ROOT } from './install.mjs';
  * @typedef {{ passed: number, failed: number, skipped: number, notes: string[] }} Count
  * @typedef {{
  *   name: string, title: string, after?: string[], slots: number, command: string[], env?: Record<string, string>,
- *   report?: string, folders?: string[], needs?: ('postgres' | 'browser')[], count: (done: { code: number, output: string }, report: unknown) => Count
+ *   limitMinutes?: number, report?: string, folders?: string[], needs?: ('postgres' | 'browser')[], count: (done: { code: number, output: string }, report: unknown) => Count
  * }} Step `slots`: how many of the two lanes it takes
  */
 
@@ -152,6 +152,7 @@ export function steps({ work, long, filter }) {
         `--outputFile.json=${report('unit')}`,
       ],
       env: long ? { TALLYSTONE_LONG: '1' } : {},
+      limitMinutes: long ? 90 : undefined,
       count: countVitest,
     },
     {

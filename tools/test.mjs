@@ -18,7 +18,7 @@ import { ROOT, checkNode, ensurePackages } from './install.mjs';
 import { SetupProblem, aptInstall, barredFolder, canInstall, startPostgres, stopPostgres } from './postgres.mjs';
 
 const LANES = 2;
-const STEP_LIMIT_MS = 15 * 60_000;
+const STEP_LIMIT_MINUTES = 15;
 
 const began = Date.now();
 const say = (line = '') => console.log(line);
@@ -140,10 +140,11 @@ function runStep(step, env) {
     const take = (chunk) => (output += chunk.toString());
     child.stdout.on('data', take);
     child.stderr.on('data', take);
+    const minutes = step.limitMinutes ?? STEP_LIMIT_MINUTES;
     const limit = setTimeout(() => {
-      output += `\nEnded after ${STEP_LIMIT_MS / 60_000} minutes.\n`;
+      output += `\nEnded after ${minutes} minutes.\n`;
       process.kill(-child.pid, 'SIGKILL');
-    }, STEP_LIMIT_MS);
+    }, minutes * 60_000);
     const done = (code) => {
       clearTimeout(limit);
       children.delete(child);

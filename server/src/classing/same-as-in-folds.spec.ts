@@ -1,0 +1,95 @@
+import { AskedConstraints } from '@tallystone/contracts/binnings/bins';
+import { Generator } from '@tallystone/numeric/random/generator';
+import { describe, expect, it } from 'vitest';
+import { automaticEdges, automaticGroups } from '../replay/classing';
+import { type SourceColumn, sourceOf } from '../replay/source';
+import { BAD, DEVELOPMENT, GOOD } from '../replay/types';
+import type { TaskControl } from '../threads/task';
+import { classColumn } from './class-column';
+
+/**
+ * The bench classes from counted fine classes, a fold of the cross-validation from rows in memory. On the same rows both have to come to the
+ * same bins, or a fold would not repeat what the modeller did.
+ */
+
+const ROWS = 4000;
+const control: TaskControl = { cancelled: () => false, progress: () => undefined, transfer: () => undefined };
+const data = {
+  sha256: null,
+  delimiter: ',',
+  encoding: 'utf-8',
+  decimal: '.',
+  thousands: null,
+  trim: true,
+  missing: ['', 'NA'],
+} as const;
+
+function invented(seed: number) {
+  const random = new Generator(seed);
+  const utilisation: string[] = [];
+  const home: string[] = [];
+  const outcome = new Uint8Array(ROWS);
+  const weights = new Float64Array(ROWS);
+  for (let row = 0; row < ROWS; row++) {
+    const value = Math.round(random.uniform() * 1000) / 10;
+    const place = ['owner', 'rent', 'parents', 'other', 'hostel'][Math.min(4, Math.floor(random.uniform() ** 2 * 5))];
+    const draw = random.uniform();
+    utilisation.push(draw < 0.05 ? '-999' : draw < 0.1 ? '' : String(value));
+    home.push(random.uniform() < 0.04 ? 'NA' : place);
+    const eta = 1.5 - 0.03 * (value - 50) + { owner: 0.6, rent: -0.5, parents: 0, other: -0.2, hostel: -0.9 }[place]!;
+    outcome[row] = random.uniform() < 1 / (1 + Math.exp(-eta)) ? GOOD : BAD;
+    weights[row] = 0.5 + random.uniform();
+  }
+  const columns = sourceOf({ utilisation, home });
+  return { utilisation, home, outcome, weights, column: (name: string) => columns.column(name) as SourceColumn };
+}
+
+describe.each([
+  ['rising', false],
+  ['falling', true],
+  ['any', true],
+  ['one-peak', false],
+] as const)('classing under trend "%s" (weights: %s)', (trend, weighted) => {
+  it.each([1, 2, 3])('is that of a fold that trains on every row, sample %i', (seed) => {
+    const sample = invented(seed);
+    const weights = weighted ? sample.weights : null;
+    const asked = AskedConstraints.parse({ trend, fineClasses: 60 });
+    const counted = { rows: ROWS, partition: new Uint8Array(ROWS).fill(DEVELOPMENT), outcome: sample.outcome, weights };
+    const settings = { made: 'automatic', ...asked, trend } as const;
+
+    const numeric = classColumn(
+      {
+        defined: { column: 'utilisation', kind: 'numeric', special: [{ label: 'no record', values: [-999] }] },
+        column: sample.column('utilisation'),
+        data: { ...data, missing: [...data.missing] },
+        counted,
+        constraints: asked,
+      },
+      control,
+    );
+    const values = Float64Array.from(sample.utilisation, (text) => (text === '' || text === '-999' ? NaN : Number(text)));
+    const edges = automaticEdges(values, sample.outcome, weights, settings, 'left');
+    expect(numeric).toMatchObject({ automatic: { edges } });
+    // Under a trend against the risk nothing may be cut: equal, and told apart from a comparison of nothing with nothing.
+    if (trend !== 'rising') expect(edges.length).toBeGreaterThan(1);
+
+    const categorical = classColumn(
+      {
+        defined: { column: 'home', kind: 'categorical', special: [] },
+        column: sample.column('home'),
+        data: { ...data, missing: [...data.missing] },
+        counted,
+        constraints: asked,
+      },
+      control,
+    );
+    const names = [...new Set(sample.home)];
+    const categories = Int32Array.from(sample.home, (text) => (text === 'NA' ? -1 : names.indexOf(text)));
+    const { groupOf, groups } = automaticGroups(categories, names.length, sample.outcome, weights, { ...settings, trend: 'any' });
+    const bins = (categorical as { automatic: { groups: string[][] } }).automatic.groups;
+    expect(groups).toBeGreaterThan(2);
+    expect(bins.map((group) => [...group].sort())).toEqual(
+      Array.from({ length: groups }, (_, group) => names.filter((_, index) => groupOf[index] === group).sort()),
+    );
+  });
+});
