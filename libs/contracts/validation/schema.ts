@@ -38,6 +38,25 @@ export const PartitionAuc = z.object({
   hosmerLemeshow: z.object({ statistic: nullable, groups: z.int(), degreesOfFreedom: z.int(), pValue: nullable }).nullable(),
 });
 
+const pairOfFits = { own: number, foreign: number };
+
+/** What the independent replication adds: collinearity of the columns kept, and an unpenalised fit of them by a foreign library. */
+export const Challenge = z.object({
+  /** null = an exact combination of others. Above 5 is flagged (common practice). */
+  varianceInflation: z.array(z.object({ column: z.string(), value: nullable })),
+  conditionIndex: nullable,
+  foreign: z.union([
+    z.object({
+      rows: z.int(),
+      of: z.int(),
+      intercept: z.object(pairOfFits),
+      coefficients: z.array(z.object({ column: z.string(), ...pairOfFits })),
+      largestDifference: number,
+    }),
+    z.object({ unavailable: z.string() }),
+  ]),
+});
+
 export const Replication = z
   .object({
     evidenceId: z.uuid(),
@@ -54,6 +73,7 @@ export const Replication = z
     scoresCompared: z.int(),
     scoresEqual: z.boolean(),
     performance: z.array(PartitionAuc),
+    challenge: Challenge.nullable(),
     dataSha256: sha,
     specificationSha256: sha,
     codeVersion: z.string(),
@@ -130,6 +150,7 @@ export const ofVersion = z.strictObject({ versionId: z.uuid() });
 export type ReplicationMethod = z.infer<typeof ReplicationMethod>;
 export type HalvesRow = z.infer<typeof HalvesRow>;
 export type PartitionAuc = z.infer<typeof PartitionAuc>;
+export type Challenge = z.infer<typeof Challenge>;
 export type Replication = z.infer<typeof Replication>;
 export type Stability = z.infer<typeof Stability>;
 export type StabilityRow = z.infer<typeof StabilityRow>;

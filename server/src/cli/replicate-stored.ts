@@ -1,7 +1,7 @@
 import type { Specification } from '@tallystone/contracts/specification/types';
 import type { Result } from '@tallystone/contracts/result/types';
 import { ReadingError, readForReplay } from '../reading/index';
-import { type Method, ReplayError, replay } from '../replay/index';
+import { type Challenge, type Method, ReplayError, challenge, replay } from '../replay/index';
 import { scoreFingerprint } from '../replay/score-fingerprint';
 
 /**
@@ -17,7 +17,7 @@ export interface ReplicationOrder {
 
 export type ReplicationReply =
   | { readonly kind: 'progress'; readonly phase: string; readonly share: number | null }
-  | { readonly kind: 'done'; readonly result: Result; readonly scores: { sha256: string; count: number } | null; readonly dataSha256: string; readonly rows: number }
+  | { readonly kind: 'done'; readonly result: Result; readonly scores: { sha256: string; count: number } | null; /** With the independent method alone. */ readonly challenge: Challenge | null; readonly dataSha256: string; readonly rows: number }
   | { readonly kind: 'refused'; readonly messages: readonly string[] };
 
 const reply = (message: ReplicationReply): Promise<void> =>
@@ -37,7 +37,9 @@ async function carryOut({ specification, specificationSha256, method, version }:
     onFit: (done, count) => progress('Fitting the path', 0.3 + (0.1 * done) / count),
     onFold: (done, count) => progress('Cross-validating', 0.4 + (0.55 * done) / count),
   });
-  await reply({ kind: 'done', result: replayed.result, scores: scoreFingerprint(replayed, specification), dataSha256: sha256, rows });
+  if (method === 'independent') progress('Fitting the foreign challenger', 0.96);
+  const challenged = method === 'independent' ? challenge(replayed) : null;
+  await reply({ kind: 'done', result: replayed.result, scores: scoreFingerprint(replayed, specification), challenge: challenged, dataSha256: sha256, rows });
 }
 
 process.once('message', (order: ReplicationOrder) => {

@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import { resultSchema } from '@tallystone/contracts/result/schema';
 import { specificationSchema } from '@tallystone/contracts/specification/schema';
+import { Challenge } from '@tallystone/contracts/validation/schema';
 import { Conclusion } from '@tallystone/contracts/versions/schema';
 
 /**
@@ -247,6 +248,8 @@ export const Replication = z.strictObject({
   /** Coefficients of the replication, by column, and its intercept, to be laid beside those of the version. */
   intercept: maybe,
   coefficients: z.array(z.strictObject({ column: z.string(), coefficient: z.number() })),
+  /** Collinearity of what is kept and the foreign library's unpenalised fit: with the independent method. */
+  challenge: Challenge.nullable(),
 });
 
 export const Finding = z.strictObject({

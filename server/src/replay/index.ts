@@ -8,6 +8,7 @@
 export { bandEdges } from './bands';
 export { binsOf, cutLabels, regularBins } from './bins';
 export { automaticEdges, automaticGroups } from './classing';
+export { challenge, FOREIGN_TOLERANCE, type Challenge } from './challenge';
 export { codeCharacteristics } from './coding';
 export { Columns, isoDay, type NumberView } from './columns';
 export {

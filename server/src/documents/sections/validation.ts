@@ -116,6 +116,39 @@ function writeReplication(writer: Writer, replication: Replication): void {
       ...mine.map((entry) => row(writer.label(entry.column), entry.coefficient ?? 0, theirs.get(entry.column) ?? null)),
     ],
   });
+  writeChallenge(writer, replication);
+}
+
+/** Beside an independent replication: collinearity of what is kept, and the unpenalised fit by a library that shares nothing with this one. */
+function writeChallenge(writer: Writer, { challenge, evidence }: Replication): void {
+  if (challenge === null || challenge.varianceInflation.length === 0) return;
+  const { foreign, varianceInflation, conditionIndex } = challenge;
+  const fitted = 'unavailable' in foreign ? null : foreign;
+  writer.text(
+    fitted
+      ? `Foreign challenger: the columns kept, fitted without a penalty by this library and by ml-logistic-regression 2.0.0 (plain gradient descent) on ${whole(fitted.rows)} of ${whole(fitted.of)} development rows. The largest difference of a coefficient is ${significant(fitted.largestDifference)}; about 0.001 can be expected.`
+      : `Foreign challenger: not fitted. ${'unavailable' in foreign ? foreign.unavailable : ''}`,
+  );
+  const pairs = new Map(fitted?.coefficients.map((pair) => [pair.column, pair]));
+  writer.table('Collinearity, and the unpenalised fit by two libraries', evidence, {
+    columns: [
+      { title: 'Characteristic', grow: 1 },
+      { title: 'VIF', align: 'right' },
+      { title: 'This library', align: 'right' },
+      { title: 'Foreign library', align: 'right' },
+    ],
+    rows: varianceInflation.map(({ column, value }) => ({
+      cells: [
+        writer.label(column),
+        value === null ? 'collinear' : fixed(value, 2),
+        fixed(pairs.get(column)?.own ?? null, 5),
+        fixed(pairs.get(column)?.foreign ?? null, 5),
+      ],
+    })),
+  });
+  writer.text(
+    `${conditionIndex === null ? '' : `The largest condition index is ${fixed(conditionIndex, 1)}. `}A VIF above 5 is flagged (common practice).`,
+  );
 }
 
 const hashText = (hash: string, expected: string): string =>

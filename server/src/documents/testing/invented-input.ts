@@ -300,6 +300,21 @@ export function inventedInput(count = 12): DocumentInput {
         resultSha256: hash('replicated result'),
         intercept: 2.1,
         coefficients: result.characteristics.map(({ column, coefficient }) => ({ column, coefficient: coefficient ?? 0 })),
+        challenge: {
+          varianceInflation: result.characteristics.map(({ column }, index) => ({ column, value: 1.1 + index / 10 })),
+          conditionIndex: 1.9,
+          foreign: {
+            rows: 4200,
+            of: 8400,
+            intercept: { own: 2.11, foreign: 2.1098 },
+            coefficients: result.characteristics.map(({ column, coefficient }) => ({
+              column,
+              own: (coefficient ?? 0) + 0.04,
+              foreign: (coefficient ?? 0) + 0.0402,
+            })),
+            largestDifference: 0.0002,
+          },
+        },
       },
     ],
     validation: {

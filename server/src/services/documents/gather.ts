@@ -285,6 +285,7 @@ function replicationOf(entry: FoundEvidence): DocumentInput['replications'][numb
     resultSha256: content.resultSha256,
     intercept: content.intercept,
     coefficients: [...content.coefficients],
+    challenge: (content.challenge as DocumentInput['replications'][number]['challenge'] | undefined) ?? null,
   };
 }
 

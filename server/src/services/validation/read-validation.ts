@@ -35,6 +35,7 @@ export async function readValidation(sequelize: Sequelize, version: FoundVersion
         entry.content as ReplicationEvidence;
       return {
         ...content,
+        challenge: content.challenge ? (content.challenge as Replication['challenge']) : null,
         evidenceId: entry.id,
         evidenceNumber: entry.number,
         rows: content.rows.filter(({ place }) => state !== 'covered' || !pathOfOutOfTime.test(place)),

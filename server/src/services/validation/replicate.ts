@@ -10,6 +10,7 @@ import { startRun } from '../../jobs/start-run';
 import type { Actor } from '../../models/person';
 import { VersionRow } from '../../models/version';
 import { OTHER_METHOD, SAME_METHOD, compareResults, countNumbers } from '../../replay/comparison';
+import type { Challenge } from '../../replay/challenge';
 import { readRawFile } from '../../storage/rawFiles';
 import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
@@ -58,6 +59,8 @@ export interface ReplicationEvidence {
   readonly seconds: number;
   readonly intercept: number;
   readonly coefficients: readonly { column: string; coefficient: number }[];
+  /** Absent in replications made before it existed. */
+  readonly challenge?: Challenge | null;
 }
 
 /** Replays the version's specification from its stored raw file in a new process and holds both halves against each other. */
@@ -104,6 +107,7 @@ export async function replicate(
     seconds,
     intercept: half.result.intercept,
     coefficients: half.result.characteristics.map(({ column, coefficient }) => ({ column, coefficient: coefficient ?? 0 })),
+    challenge: half.challenge,
   };
 }
 

@@ -20,6 +20,7 @@ import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { Versions } from '../data/versions';
 import { AucFigure, measures } from '../ui/auc-figure';
+import { ChallengeTable } from '../ui/challenge-table';
 import { HalvesFigure } from '../ui/halves-figure';
 import { StabilityFigure } from '../ui/stability-figure';
 import { latestByMethod, methodName, nextTest, validationFinding } from '../ui/validation-view';
@@ -36,6 +37,7 @@ import { latestByMethod, methodName, nextTest, validationFinding } from '../ui/v
     ReactiveFormsModule,
     RouterLink,
     AucFigure,
+    ChallengeTable,
     DecisionNotice,
     DenseTable,
     EmptyState,
