@@ -1,6 +1,7 @@
 import express, { type Express } from 'express';
 import type { Context } from './context';
 import { notFound } from './problems/problem';
+import { serveApiPage } from './routes/http/api-page';
 import { answerErrors } from './routes/http/errors';
 import { mountRoutes } from './routes/http/mount';
 import { servePages } from './routes/http/pages';
@@ -36,6 +37,7 @@ export function buildApp(context: Context, routes: readonly Route[] = allRoutes(
   app.use(['/api', '/health'], apiHeaders(context.config));
   app.use('/api', sessionCookie(context));
   mountRoutes(app, context, routes);
+  serveApiPage(app, context);
   app.use(['/api', '/health'], () => {
     throw notFound();
   });

@@ -28,6 +28,24 @@ const policyOf = (headers: Record<string, string>): Map<string, string[]> =>
     headers['content-security-policy'].split(';').map((part) => [part.trim().split(' ')[0], part.trim().split(' ').slice(1)]),
   );
 
+describe('the page of the API', () => {
+  it('is for people who are signed in, with a policy of its own and files of this server', async () => {
+    const refused = await supertest(server.app).get('/api/page/').expect(401);
+    expect(refused.body.code).toBe('signed-out');
+    const reader = await server.signIn('ada', 'auditor');
+    expect((await reader.get('/api/page').expect(308)).headers['location']).toBe('/api/page/');
+    const { text, headers } = await reader.get('/api/page/').expect(200);
+    expect(text).toContain('Tallystone: API');
+    expect(text).not.toMatch(/https?:\/\/(?!www\.w3\.org)/);
+    const policy = policyOf(headers);
+    expect(policy.get('default-src')).toEqual(["'none'"]);
+    expect(policy.get('script-src')).toEqual(["'self'"]);
+    expect(text).not.toMatch(/<script(?![^>]*\bsrc=)/);
+    for (const [, file] of text.matchAll(/(?:src|href)="\.\/([^"]+)"/g)) await reader.get(`/api/page/${file}`).expect(200);
+    expect((await reader.get('/api/page/swagger-ui-init.js').expect(200)).text).toContain('/api/openapi.json');
+  });
+});
+
 describe('pages', () => {
   it('have a policy without inline code, and a nonce of their own in the policy and on the root element', async () => {
     const [first, second] = await Promise.all(

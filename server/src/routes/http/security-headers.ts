@@ -53,6 +53,26 @@ export function pageHeaders(config: Config): RequestHandler[] {
   ];
 }
 
+/** Headers for the page of the API, whose package sets styles on elements. */
+export function apiPageHeaders(config: Config): RequestHandler {
+  return helmet({
+    contentSecurityPolicy: {
+      useDefaults: false,
+      directives: {
+        defaultSrc: ["'none'"],
+        scriptSrc: ["'self'"],
+        styleSrc: ["'self'", "'unsafe-inline'"],
+        imgSrc: ["'self'", 'data:'],
+        connectSrc: ["'self'"],
+        baseUri: ["'none'"],
+        formAction: ["'none'"],
+        frameAncestors: ["'none'"],
+      },
+    },
+    ...others(config),
+  });
+}
+
 export const nonceOf = (response: Response): string => String(response.locals['nonce']);
 
 function others(config: Config) {
