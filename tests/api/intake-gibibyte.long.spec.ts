@@ -86,7 +86,7 @@ describe('a file of 1 GiB', () => {
         .post(`${path}/readings`)
         .send((preview.body as { choices: object }).choices)
         .expect(202);
-      const run = await modeller.ended((started.body as Run).id, 15 * 60_000);
+      const run = await modeller.ended((started.body as Run).id, 40 * 60_000);
       expect(run.problem).toBeNull();
       expect(run.state).toBe('succeeded');
       const columns = await modeller.get(`${path}/columns`).expect(200);
@@ -98,7 +98,7 @@ describe('a file of 1 GiB', () => {
       expect(webMemory).toBeLessThan(512);
       expect(workerMemory).toBeLessThan(900);
     },
-    30 * 60_000,
+    60 * 60_000,
   );
 
   it('and a byte more is refused before it is sent', async () => {

@@ -6,6 +6,7 @@ export const channels = {
   queue: 'tallystone_queue',
   sessions: 'tallystone_sessions',
   cancel: 'tallystone_cancel',
+  parts: 'tallystone_parts',
 } as const;
 export type Channel = (typeof channels)[keyof typeof channels];
 

@@ -1,9 +1,7 @@
-import { problemCodes } from '@tallystone/contracts/problems/codes';
-import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import type { Context } from '../context';
 import { inTransaction } from '../database/transaction';
 import { problemFrom } from '../problems/from-error';
-import { TaskMemoryError } from '../threads/pool';
+import { problemOfFailure } from './failure';
 import type { Handler, RunContext } from './handler';
 import { Heartbeat } from './heartbeat';
 import { Progress } from './progress';
@@ -101,26 +99,9 @@ async function settle(
     if (cancelled || cause instanceof Cancelled)
       await endRun(context, tx, run, handler, { state: 'cancelled', outcome: 'cancelled' });
     else if (cause instanceof Stopping || problemFrom(cause)?.status === 503) await requeue(context, tx, run, 'released');
-    else await endRun(context, tx, run, handler, { state: 'failed', outcome: 'failed', problem: problemOf(cause) });
+    else await endRun(context, tx, run, handler, { state: 'failed', outcome: 'failed', problem: problemOfFailure(cause) });
   }).catch((refused: unknown) => {
     if (!(refused instanceof Superseded)) throw refused;
   });
   log.info({ err: cause instanceof Cancelled || cause instanceof Stopping ? undefined : cause }, 'run ended without a result');
-}
-
-/** What a person is told about a run that failed. */
-function problemOf(cause: unknown): ProblemItem {
-  if (cause instanceof TaskMemoryError)
-    return {
-      code: 'memory',
-      message: `${cause.message} Fewer rows, characteristics or penalties need less.`,
-      where: { memoryMb: cause.memoryMb },
-    };
-  const problem = problemFrom(cause);
-  if (problem) return { code: problem.code, message: problem.detail, where: {} };
-  return {
-    code: problemCodes.internal,
-    message: 'The work failed on our side. The log says why under the id of this run.',
-    where: {},
-  };
 }

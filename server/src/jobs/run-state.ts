@@ -101,6 +101,7 @@ export async function endRun(
     [run.id, ending.state, asColumn(ending.result), asColumn(ending.problem)],
     tx,
   );
+  await rows(sequelize, 'DELETE FROM run_parts WHERE run_id = $1 RETURNING number', [run.id], tx);
   await closeAttempt(context, tx, run, ending.outcome);
   await emitRunEvent(sequelize, tx, run.id);
   runsEnded.inc({ kind: run.kind, state: ending.state });

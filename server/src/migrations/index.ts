@@ -1,6 +1,7 @@
 import { people } from './0001-people';
 import { sessions } from './0002-sessions';
 import { record } from './0003-record';
+import { runParts } from './0402-run-parts';
 import { runs } from './0004-runs';
 import { queue } from './0005-queue';
 import { mail } from './0006-mail';
@@ -17,4 +18,4 @@ import type { Migration } from './migration';
  * Every migration in order. A static list, because a glob finds nothing in the bundle. Numbers leave room by entity: 00xx the base,
  * 01xx models and samples, 02xx binnings, 03xx fits, 04xx scorecards and versions, 05xx documents; the order of this list decides.
  */
-export const migrations: readonly Migration[] = [people, sessions, record, runs, queue, mail, models, samples, outOfTime, binnings, fits, scorecards, versions];
+export const migrations: readonly Migration[] = [people, sessions, record, runs, queue, mail, models, samples, outOfTime, binnings, fits, scorecards, versions, runParts];

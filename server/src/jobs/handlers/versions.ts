@@ -1,8 +1,10 @@
 import { replayForFreezing, writeVersion } from '../../services/versions/freeze';
 import { replicate, writeReplication } from '../../services/validation/replicate';
-import { studyStability, writeStability } from '../../services/validation/stability';
+import { batchesOf, summariseStability, writeStability } from '../../services/validation/stability';
+import { resamplePart } from '../definitions/parts';
 import { freezeVersionJob, replicateVersionJob, studyStabilityJob } from '../definitions/versions';
 import { handle } from '../handler';
+import { spread } from '../parts/spread';
 
 export const freezeVersion = handle(freezeVersionJob, {
   async work(payload, { context, run, signal, progress, finish }) {
@@ -19,8 +21,11 @@ export const replicateVersion = handle(replicateVersionJob, {
 });
 
 export const studyVersionStability = handle(studyStabilityJob, {
-  async work(payload, { context, run, signal, progress, finish }) {
-    const content = await studyStability(context, payload, { signal, onProgress: progress });
+  async work(payload, inside) {
+    const { context, run, finish, progress } = inside;
+    const batches = batchesOf(payload);
+    const draws = await spread(inside, resamplePart, batches, (share) => progress('Refitting resamples', share));
+    const content = await summariseStability(context, payload, draws.flat());
     await finish((tx) => writeStability(context, tx, run, payload.versionId, content));
   },
 });

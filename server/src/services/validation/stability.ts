@@ -9,11 +9,11 @@ import { studyStabilityJob } from '../../jobs/definitions/versions';
 import { startRun } from '../../jobs/start-run';
 import type { Actor } from '../../models/person';
 import { VersionRow } from '../../models/version';
-import { runInThread, threadCount } from '../../threads/run-in-thread';
+import { runInThread } from '../../threads/run-in-thread';
 import type { ResampleDraw } from '../../threads/study-stability';
 import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
-import { loadColumns } from '../samples/load-columns';
+import { type LoadedColumns, loadColumns } from '../samples/load-columns';
 import { addEvidence } from '../versions/evidence';
 import { type FoundVersion, findVersion } from '../versions/find-version';
 
@@ -46,46 +46,80 @@ export interface StabilityEvidence {
 
 const level = 0.95;
 
-/**
- * Refits the version at its penalty on stratified bootstrap resamples of development: batches spread over the threads of this worker. A draw
- * depends on the seed and its number alone, so the study is the same however it is cut.
- */
-export async function studyStability(
-  context: Context,
-  payload: { versionId: string; resamples: number; seed: number },
-  options: { signal: AbortSignal; onProgress: (phase: string, share: number | null) => void },
-): Promise<StabilityEvidence> {
-  const { versionId, resamples, seed } = payload;
-  const row = await VersionRow.findByPk(versionId, { raw: true });
-  const found = await findVersion(context.sequelize, versionId);
-  if (!row || !found) throw new Error(`There is no version ${versionId}`);
-  const whole = JSON.parse(row.specification) as Specification;
-  const result = JSON.parse(row.result) as Result;
-  // The path down to the chosen penalty, so that the start is the version's own fit; no folds, nothing is chosen here.
-  const grid = result.path.map(({ lambda }) => lambda).filter((lambda) => lambda >= result.lambda);
-  const specification: Specification = { ...whole, fit: { ...whole.fit, lambda: { grid }, choose: 'value', folds: null, refit: null } };
-  const { rows: count, columns } = await loadColumns(context.sequelize, found.sampleId, specification);
+/** Resamples of one part: as many as the solver refits at once. */
+const batchSize = 16;
 
-  const batches = Math.min(threadCount(), resamples);
-  const shares = new Array<number>(batches).fill(0);
-  const draws = await Promise.all(
-    Array.from({ length: batches }, (_, batch): Promise<ResampleDraw[]> => {
-      const first = Math.floor((batch * resamples) / batches);
-      const next = Math.floor(((batch + 1) * resamples) / batches);
-      return runInThread(
-        'version.resample',
-        { specification, rows: count, columns, seed, first, count: next - first },
-        {
-          signal: options.signal,
-          onProgress: (phase, share) => {
-            shares[batch] = share ?? 0;
-            options.onProgress(phase, shares.reduce((sum, value) => sum + value, 0) / batches);
-          },
-        },
-      );
-    }),
-  );
-  return summarise(draws.flat(), result, whole, { resamples, seed });
+export interface Batch {
+  readonly versionId: string;
+  readonly seed: number;
+  readonly first: number;
+  readonly count: number;
+}
+
+/** The study in parts. A draw depends on the seed and its number alone, so the study is the same whoever does which part. */
+export function batchesOf({ versionId, resamples, seed }: { versionId: string; resamples: number; seed: number }): Batch[] {
+  return Array.from({ length: Math.ceil(resamples / batchSize) }, (_, batch) => {
+    const first = batch * batchSize;
+    return { versionId, seed, first, count: Math.min(batchSize, resamples - first) };
+  });
+}
+
+export interface PlainDraw {
+  readonly resample: number;
+  readonly intercept: number;
+  readonly coefficients: number[];
+  readonly converged: boolean;
+}
+
+/** Refits the version at its penalty on the stratified bootstrap resamples of one part. */
+export async function resampleBatch(context: Context, { versionId, ...batch }: Batch, signal: AbortSignal): Promise<PlainDraw[]> {
+  const { specification, rows: count, columns } = await studied.of(context, versionId);
+  const draws = await runInThread('version.resample', { specification, rows: count, columns, ...batch }, { signal });
+  return draws.map((draw) => ({ ...draw, coefficients: Array.from(draw.coefficients) }));
+}
+
+/** The rows of the version studied last: the next part is most often of the same. Let go when a minute has passed without one. */
+const studied = new (class {
+  private kept: { readonly versionId: string; readonly loaded: Promise<LoadedColumns & { specification: Specification }> } | null = null;
+  private timer: NodeJS.Timeout | undefined;
+
+  of(context: Context, versionId: string): Promise<LoadedColumns & { specification: Specification }> {
+    clearTimeout(this.timer);
+    this.timer = setTimeout(() => (this.kept = null), 60_000).unref();
+    if (this.kept?.versionId === versionId) return this.kept.loaded;
+    const loaded = loadStudied(context, versionId);
+    this.kept = { versionId, loaded };
+    loaded.catch(() => {
+      if (this.kept?.loaded === loaded) this.kept = null;
+    });
+    return loaded;
+  }
+})();
+
+async function loadStudied(context: Context, versionId: string): Promise<LoadedColumns & { specification: Specification }> {
+  const { row, found } = await readVersionRow(context, versionId);
+  const whole = JSON.parse(row.specification) as Specification;
+  const { lambda, mixing } = JSON.parse(row.result) as Result;
+  // At the penalty that was chosen, without folds: nothing is chosen here.
+  const specification: Specification = { ...whole, fit: { ...whole.fit, mixing, lambda: { value: lambda }, choose: 'value', folds: null, refit: null } };
+  return { specification, ...(await loadColumns(context.sequelize, found.sampleId, specification)) };
+}
+
+async function readVersionRow(context: Context, versionId: string) {
+  const [row, found] = await Promise.all([VersionRow.findByPk(versionId, { raw: true }), findVersion(context.sequelize, versionId)]);
+  if (!row || !found) throw new Error(`There is no version ${versionId}`);
+  return { row, found };
+}
+
+/** What the draws of a study come to. */
+export async function summariseStability(
+  context: Context,
+  { versionId, resamples, seed }: { versionId: string; resamples: number; seed: number },
+  draws: readonly PlainDraw[],
+): Promise<StabilityEvidence> {
+  const { row } = await readVersionRow(context, versionId);
+  const typed = draws.map((draw) => ({ ...draw, coefficients: Float64Array.from(draw.coefficients) }));
+  return summarise(typed, JSON.parse(row.result) as Result, JSON.parse(row.specification) as Specification, { resamples, seed });
 }
 
 function summarise(draws: readonly ResampleDraw[], result: Result, { scaling }: Specification, asked: { resamples: number; seed: number }): StabilityEvidence {
