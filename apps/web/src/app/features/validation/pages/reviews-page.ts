@@ -3,12 +3,10 @@ import { MatButtonModule } from '@angular/material/button';
 import { RouterLink } from '@angular/router';
 import type { VersionSummary } from '@tallystone/contracts/versions/schema';
 import { type Column } from '../../../ui/column';
-import { CellTemplate, DenseTable } from '../../../ui/dense-table';
 import { EmptyState } from '../../../ui/empty-state';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
-import { StatusMark } from '../../../ui/status-mark';
-import { stateTone } from '../../../ui/version-state';
+import { VersionTable, versionColumns } from '../../../ui/version-table';
 import { Versions } from '../data/versions';
 import { reviewsFinding } from '../ui/version-view';
 
@@ -16,7 +14,7 @@ import { reviewsFinding } from '../ui/version-view';
 @Component({
   selector: 'ts-reviews-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
-  imports: [MatButtonModule, RouterLink, CellTemplate, DenseTable, EmptyState, PageHeader, ProblemList, StatusMark],
+  imports: [MatButtonModule, RouterLink, EmptyState, PageHeader, ProblemList, VersionTable],
   template: `
     <div class="ts-page ts-stack">
       <ts-page-header title="Reviews" [finding]="finding()" />
@@ -29,11 +27,7 @@ import { reviewsFinding } from '../ui/version-view';
             <a matButton="outlined" routerLink="/models">Go to the models</a>
           </ts-empty>
         } @else {
-          <ts-table caption="Versions under review" [columns]="columns" [rows]="versions()" [identify]="byId">
-            <ng-template tsCell="state" [tsCellRows]="versions()" let-row>
-              <ts-status [tone]="tone(row)">{{ row.state }}</ts-status>
-            </ng-template>
-          </ts-table>
+          <ts-version-table caption="Versions under review" [columns]="columns" [versions]="versions()" />
         }
       } @else if (list.isLoading()) {
         <p class="ts-second" role="status">Reading the reviews</p>
@@ -54,12 +48,10 @@ export class ReviewsPage {
       value: (row) => `Version ${row.number}`,
       link: (row) => ['/models', row.modelId, row.state === 'In validation' && !row.awaitingCompliance ? 'validation' : 'version', row.id],
     },
-    { key: 'state', label: 'State', value: (row) => row.state },
-    { key: 'waits', label: 'Waits for', value: (row) => row.waitingFor },
-    { key: 'kept', label: 'Characteristics', kind: 'count', value: (row) => row.kept },
-    { key: 'by', label: 'Frozen by', value: (row) => row.frozenBy },
-    { key: 'at', label: 'Frozen', kind: 'moment', value: (row) => row.frozenAt },
+    versionColumns.state,
+    versionColumns.waits,
+    versionColumns.kept,
+    versionColumns.by,
+    versionColumns.at,
   ];
-  protected readonly byId = (row: VersionSummary): string => row.id;
-  protected readonly tone = (row: VersionSummary) => stateTone(row.state);
 }
