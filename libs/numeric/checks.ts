@@ -20,7 +20,7 @@ export function requireFinite(name: string, values: ArrayLike<number>): void {
   }
 }
 
-/** Weights must be finite and not negative, with a positive total. Returns the total. */
+/** Weights must be finite and not negative, with a total that is positive and finite. Returns the total. */
 export function requireWeights(name: string, weights: ArrayLike<number>): number {
   let total = 0;
   for (let i = 0; i < weights.length; i++) {
@@ -30,6 +30,7 @@ export function requireWeights(name: string, weights: ArrayLike<number>): number
     total += w;
   }
   if (!(total > 0)) throw new NumericError('out-of-range', `${name} adds up to zero.`, { name });
+  if (total === Infinity) throw new NumericError('out-of-range', `${name} adds up to more than a number can hold.`, { name });
   return total;
 }
 

@@ -1,8 +1,11 @@
+import { NumericError } from '../errors';
 import type { Fit, FitProblem } from '../penalised/problem';
+import { requireLambda, requireProblem } from '../penalised/validation';
 
 /**
  * The second solver: accelerated proximal gradient with restart. It shares no code with coordinate descent (own loss, own standardising, own
- * proximal step, own residual), so that an error of one cannot hide in the other. First order only: slow beside it, and good for a replication.
+ * proximal step, own residual), so that an error of one cannot hide in the other; only the check of arguments is the same. First order only: slow
+ * beside it, and good for a replication.
  */
 
 export interface IndependentOptions {
@@ -32,11 +35,15 @@ function standardise(problem: FitProblem): Standardised {
     if (weighted.every((x) => x === weighted[0])) return new Float64Array(rows);
     let mean = 0;
     for (let i = 0; i < rows; i++) mean += weight[i] * column[i];
+    // Distances are taken in units of the largest, so that their squares neither vanish nor overflow.
+    const farthest = column.reduce((most, x, i) => (weight[i] > 0 ? Math.max(most, Math.abs(x - mean)) : most), 0);
+    if (!(farthest > 1e-304 && farthest < 1e304))
+      throw new NumericError('out-of-range', `Column ${j} has a spread of ${farthest}.`, { name: 'columns', column: j });
     let variance = 0;
-    for (let i = 0; i < rows; i++) variance += weight[i] * (column[i] - mean) ** 2;
+    for (let i = 0; i < rows; i++) if (weight[i] > 0) variance += weight[i] * ((column[i] - mean) / farthest) ** 2;
     centre[j] = mean;
-    scale[j] = Math.sqrt(variance);
-    return column.map((x) => (x - mean) / scale[j]);
+    scale[j] = farthest * Math.sqrt(variance);
+    return column.map((x, i) => (weight[i] > 0 ? (x - mean) / scale[j] : 0));
   });
   return { z, centre, scale, weight, total };
 }
@@ -82,12 +89,14 @@ class SecondMethod {
     const { scale } = this.standardised;
     this.unit = scale.map((s) => (standardize ? 1 : s));
     this.lasso = scale.map((_, j) => (lambda * (multipliers?.[j] ?? 1) * mixing) / (this.unit[j] || 1));
-    this.ridge = scale.map((_, j) => (lambda * (multipliers?.[j] ?? 1) * (1 - mixing)) / (this.unit[j] || 1) ** 2);
+    this.ridge = scale.map(
+      (_, j) => (lambda * (multipliers?.[j] ?? 1) * (1 - mixing)) / (this.unit[j] || 1) / (this.unit[j] || 1),
+    );
     this.eta = new Float64Array(problem.outcome.length);
   }
 
-  /** Gradient for (intercept, t) at a point, ridge part included; returns the smooth part of the objective and the loss. */
-  private smooth(point: Float64Array, gradient: Float64Array): { smooth: number; loss: number } {
+  /** Mean loss at a point; fills in its gradient for (intercept, t). */
+  private smooth(point: Float64Array, gradient: Float64Array): number {
     const { z, weight } = this.standardised;
     const { outcome, offset } = this.problem;
     const { eta } = this;
@@ -108,19 +117,18 @@ class SecondMethod {
       eta[i] = -sign * weight[i] * (margin > 0 ? e / (1 + e) : 1 / (1 + e));
       gradient[0] += eta[i];
     }
-    let smooth = loss;
     z.forEach((column, j) => {
       let sum = 0;
       for (let i = 0; i < rows; i++) sum += eta[i] * column[i];
-      gradient[j + 1] = sum + this.ridge[j] * point[j + 1];
-      smooth += (this.ridge[j] / 2) * point[j + 1] ** 2;
+      gradient[j + 1] = sum;
     });
-    return { smooth, loss };
+    return loss;
   }
 
+  /** The penalty with its limits is handled exactly: the point nearest to `value` that pays for itself. */
   private proximal(value: number, step: number, j: number): number {
     const { scale } = this.standardised;
-    const shrunk = Math.sign(value) * Math.max(0, Math.abs(value) - step * this.lasso[j]);
+    const shrunk = (Math.sign(value) * Math.max(0, Math.abs(value) - step * this.lasso[j])) / (1 + step * this.ridge[j]);
     const low = (this.problem.penalty.lower?.[j] ?? -Infinity) * scale[j];
     const high = (this.problem.penalty.upper?.[j] ?? Infinity) * scale[j];
     if (scale[j] === 0) return 0;
@@ -135,7 +143,8 @@ class SecondMethod {
       if (scale[j] === 0) continue;
       const t = point[j + 1];
       // The definition is for uncentred columns; the centred gradient differs by the intercept's.
-      const g = gradient[j + 1] + (centre[j] / scale[j]) * gradient[0];
+      const pull = t === 0 ? 0 : this.ridge[j] * t;
+      const g = gradient[j + 1] + pull + (centre[j] / scale[j]) * gradient[0];
       let least = t > 0 ? g + this.lasso[j] : g - this.lasso[j];
       let most = t < 0 ? g - this.lasso[j] : g + this.lasso[j];
       if (t >= (this.problem.penalty.upper?.[j] ?? Infinity) * scale[j]) most = Infinity;
@@ -149,8 +158,7 @@ class SecondMethod {
   run(tolerance: number, most: number): Fit {
     const { scale, centre, total } = this.standardised;
     const size = scale.length + 1;
-    const bound = largestEigenvalue(this.standardised) / 4 + this.ridge.reduce((a, b) => Math.max(a, b), 0);
-    const step = 1 / bound;
+    const step = 4 / largestEigenvalue(this.standardised);
     let point = new Float64Array(size);
     let ahead = point.slice();
     const gradient = new Float64Array(size);
@@ -177,14 +185,15 @@ class SecondMethod {
       residual = this.residual(point, gradient);
       if (residual <= tolerance) break;
     }
-    const { smooth, loss } = this.smooth(point, gradient);
+    const loss = this.smooth(point, gradient);
     residual = this.residual(point, gradient);
     const coefficients = scale.map((s, j) => (s === 0 || point[j + 1] === 0 ? 0 : point[j + 1] / s));
     let intercept = point[0];
-    let objective = smooth;
+    let objective = loss;
     coefficients.forEach((b, j) => {
+      const t = point[j + 1];
       intercept -= b * centre[j];
-      objective += this.lasso[j] * Math.abs(point[j + 1]);
+      if (t !== 0) objective += this.lasso[j] * Math.abs(t) + (this.ridge[j] / 2) * t * t;
     });
     const status = residual <= tolerance ? 'converged' : 'iteration-limit';
     return {
@@ -202,11 +211,14 @@ class SecondMethod {
 
 /**
  * Fits by accelerated proximal gradient with restart: the validator's second method. Its coefficients agree with those of coordinate descent to
- * about 1e-6 where the optimum is unique. Arguments as for `fitAt`; they are expected to have been checked there.
+ * about 1e-6 where the optimum is unique. Arguments as for `fitAt`.
+ * @throws NumericError as `fitAt`
  * @returns status "iteration-limit" when the residual is still above the tolerance; separation is not told apart here
  * @example fitIndependently({ columns, outcome, penalty: { mixing: 1, standardize: true } }, 0.01).coefficients
  * Source: A. Beck and M. Teboulle, SIAM J. Imaging Sciences 2(1), 2009; B. O'Donoghue and E. Candès, Foundations of Computational Mathematics 15, 2015.
  */
 export function fitIndependently(problem: FitProblem, lambda: number, options: IndependentOptions = {}): Fit {
+  requireProblem(problem);
+  requireLambda(lambda);
   return new SecondMethod(problem, lambda).run(options.tolerance ?? 1e-9, options.mostIterations ?? 50_000);
 }

@@ -1,3 +1,4 @@
+import { NumericError } from '../errors';
 import type { FitProblem } from './problem';
 
 /** Rows taken together, so that a slice of eta or of the residual stays in the processor's nearest cache. */
@@ -5,8 +6,17 @@ const BLOCK = 2048;
 const GRAM_BLOCK = 256;
 
 /**
+ * How far the values of a column may lie apart: outside, a coefficient or its gradient would leave the range of a double, and the column would be
+ * dropped or the fit be wrong without a word.
+ */
+const NARROWEST = 1e-304;
+const WIDEST = 1e304;
+
+/**
  * The columns as the solver sees them: centred by the weighted mean and divided by the weighted population standard deviation (divisor W) of the
  * rows with weight. Nothing is copied; centre and scale enter by algebra. A column without variance on those rows has scale 0 and is not used.
+ * @throws NumericError for weights whose total no double holds, and for a column whose values lie closer together than 1e-304 or farther apart
+ * than 1e304 (names the column)
  */
 export class Design {
   readonly rows: number;
@@ -37,31 +47,51 @@ export class Design {
     let total = 0;
     if (weights) for (let i = 0; i < rows; i++) total += weights[i];
     else total = rows;
+    if (!(total > 0 && total < Infinity))
+      throw new NumericError('out-of-range', `The weights add up to ${total}.`, { name: 'weights' });
     this.totalWeight = total;
     for (let i = 0; i < rows; i++) share[i] = (weights ? weights[i] : 1) / total;
     const used: number[] = [];
     this.columns.forEach((column, j) => {
       let first = NaN;
-      let varies = false;
+      let reach = 0;
       let mean = 0;
       for (let i = 0; i < rows; i++) {
         const s = share[i];
         if (s === 0) continue;
         const x = column[i];
         if (first !== first) first = x;
-        else if (x !== first) varies = true;
-        mean += s * (x - first);
-      }
-      let variance = 0;
-      if (varies) {
-        const centre = mean + first;
-        for (let i = 0; i < rows; i++) variance += share[i] * (column[i] - centre) * (column[i] - centre);
+        const distance = x - first;
+        if (distance > reach) reach = distance;
+        else if (-distance > reach) reach = -distance;
+        mean += s * distance;
       }
       this.centre[j] = mean + first;
-      this.scale[j] = Math.sqrt(variance);
+      this.scale[j] = reach === 0 ? 0 : this.deviation(column, j, reach);
       if (this.scale[j] > 0) used.push(j);
     });
     this.used = Uint32Array.from(used);
+  }
+
+  /** Square root of the weighted variance; squares are taken of distances near 1, so that none is lost or infinite. */
+  private deviation(column: Float64Array, j: number, reach: number): number {
+    if (!(reach >= NARROWEST && reach <= WIDEST)) {
+      throw new NumericError(
+        'out-of-range',
+        `The values of column ${j} lie ${reach} apart; what can be fitted lies between ${NARROWEST} and ${WIDEST} apart.`,
+        { name: 'columns', column: j },
+      );
+    }
+    // A power of two changes no digit of the result.
+    const unit = 2 ** Math.floor(Math.log2(reach));
+    const centre = this.centre[j];
+    let variance = 0;
+    for (let i = 0; i < this.rows; i++) {
+      if (this.share[i] === 0) continue;
+      const distance = (column[i] - centre) / unit;
+      variance += this.share[i] * distance * distance;
+    }
+    return Math.sqrt(variance) * unit;
   }
 
   /** eta = intercept + sum over the nonzero coefficients + offset, written into `eta`. Coefficients are on the scale of x. */

@@ -2,7 +2,7 @@ import { requireSameLength, requireThat } from '../checks';
 import { NumericError } from '../errors';
 import { rowLoss } from './loss';
 import { approach, startAtLargest } from './path';
-import type { Fit, FitProblem } from './problem';
+import type { Fit, FitProblem, FitStatus } from './problem';
 import { Solver } from './solver';
 import { requireBothOutcomes, requireLambda, requireProblem } from './validation';
 
@@ -30,6 +30,14 @@ export interface CrossValidation {
   /** Largest optimality residual of any fold's fit. */
   readonly optimalityResidual: number;
   readonly converged: boolean;
+  /** The fits that did not converge, absent when all did: fold (from 1), index of lambda (from 0), what happened. */
+  readonly failures?: readonly FoldFailure[];
+}
+
+export interface FoldFailure {
+  readonly fold: number;
+  readonly index: number;
+  readonly status: Exclude<FitStatus, 'converged'>;
 }
 
 export interface CrossValidationOptions {
@@ -64,17 +72,18 @@ export function crossValidate(
   const count = folds.reduce((most, fold) => Math.max(most, fold), 0);
   requireThat(count >= 2, 'folds', 'at least two folds are needed.');
   let optimalityResidual = 0;
-  let converged = true;
+  const failures: FoldFailure[] = [];
   const results: FoldResult[] = [];
   for (let fold = 1; fold <= count; fold++) {
-    const result = fitFold(problem, folds, fold, lambdas, options, (fit) => {
+    const result = fitFold(problem, folds, fold, lambdas, options, (fit, index) => {
       optimalityResidual = Math.max(optimalityResidual, fit.optimalityResidual);
-      if (fit.status !== 'converged') converged = false;
+      if (fit.status !== 'converged') failures.push({ fold, index, status: fit.status });
     });
     results.push(result);
     options.onFold?.(fold, count);
   }
-  return { ...summarise(lambdas, results), optimalityResidual, converged };
+  const told = { ...summarise(lambdas, results), optimalityResidual, converged: failures.length === 0 };
+  return failures.length > 0 ? { ...told, failures } : told;
 }
 
 function fitFold(
@@ -83,7 +92,7 @@ function fitFold(
   fold: number,
   lambdas: readonly number[],
   options: CrossValidationOptions,
-  record: (fit: Fit) => void,
+  record: (fit: Fit, index: number) => void,
 ): FoldResult {
   const rows = folds.length;
   const training = new Uint8Array(rows);
@@ -113,7 +122,7 @@ function fitFold(
   approach(solver, startAtLargest(solver), lambdas[0]);
   const deviance = lambdas.map((lambda, index) => {
     const fit = solver.solve(lambda, { tolerance: options.tolerance ?? FOLD_TOLERANCE });
-    record(fit);
+    record(fit, index);
     options.onFoldFit?.(fold, index, fit, solver.eta);
     let sum = 0;
     for (let i = 0; i < rows; i++) {
@@ -128,7 +137,7 @@ function fitFold(
 export function summarise(
   lambdas: readonly number[],
   folds: FoldResult[],
-): Omit<CrossValidation, 'optimalityResidual' | 'converged'> {
+): Omit<CrossValidation, 'optimalityResidual' | 'converged' | 'failures'> {
   const total = folds.reduce((sum, { weight }) => sum + weight, 0);
   const mean = lambdas.map((_, k) => folds.reduce((sum, fold) => sum + fold.weight * fold.deviance[k], 0) / total);
   const standardError = lambdas.map((_, k) => {

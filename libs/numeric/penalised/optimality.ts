@@ -1,7 +1,7 @@
 import { requireFinite, requireSameLength } from '../checks';
 import { Design, addColumns } from './design';
 import { lossAndResidual } from './loss';
-import { scaledPenalty, violation } from './penalty';
+import { penaltyAt, scaledPenalty, violation } from './penalty';
 import type { FitProblem } from './problem';
 import { requireLambda, requireProblem } from './validation';
 
@@ -47,7 +47,7 @@ export function objective(problem: FitProblem, point: Point): number {
   let total = loss;
   for (const j of design.used) {
     const t = point.coefficients[j] * design.scale[j];
-    total += point.lambda * (penalty.absolute[j] * Math.abs(t) + (penalty.square[j] / 2) * t * t);
+    if (t !== 0) total += penaltyAt(point.lambda, penalty.absolute[j] * Math.abs(t) + (penalty.square[j] / 2) * t * t);
   }
   return total;
 }
@@ -64,8 +64,8 @@ export function optimalityResidual(problem: FitProblem, point: Point): number {
   let largest = Math.abs(residual.reduce((sum, r) => sum + r, 0));
   for (const j of design.used) {
     const t = point.coefficients[j] * design.scale[j];
-    const l1 = point.lambda * penalty.absolute[j];
-    const l2 = point.lambda * penalty.square[j];
+    const l1 = penaltyAt(point.lambda, penalty.absolute[j]);
+    const l2 = penaltyAt(point.lambda, penalty.square[j]);
     // A coefficient read back on the scale of x can miss its limit by a rounding; it counts as lying on it.
     const lower = nearLimit(t, penalty.lower[j]) ? t : penalty.lower[j];
     const upper = nearLimit(t, penalty.upper[j]) ? t : penalty.upper[j];

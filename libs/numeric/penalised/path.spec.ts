@@ -39,13 +39,16 @@ describe('fitPath', () => {
 
   it('stops an automatic grid when nothing is gained, from the fifth value on, and never a stated one', () => {
     const path = fitPath(problem, { count: 100, smallestRatio: 1e-4, earlyStop: true });
-    expect(path.stoppedEarly).toBe(true);
+    expect([path.stoppedEarly, path.stoppedBecause]).toEqual([true, 'little-gain']);
     expect(path.fits.length).toBeGreaterThanOrEqual(5);
     const [before, last] = path.fits.slice(-2);
     expect((before.deviance - last.deviance) / path.nullDeviance).toBeLessThan(1e-5);
     const stated = fitPath(problem, { lambdas: automaticGrid(path.largestLambda, 100, 1e-4) });
     expect(stated.fits).toHaveLength(100);
-    expect(stated.stoppedEarly).toBe(false);
+    expect([stated.stoppedEarly, 'stoppedBecause' in stated]).toEqual([false, false]);
+    // Where the rule would stop at the last value of the grid, the grid has come to its end by itself.
+    const same = fitPath(problem, { count: 100, smallestRatio: 1e-4, earlyStop: false });
+    expect([same.fits.length, same.stoppedEarly]).toEqual([100, false]);
   });
 
   it('keeps the order of a stated grid and reaches the same optimum from any side', () => {

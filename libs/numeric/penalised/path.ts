@@ -7,8 +7,9 @@ import { requireLambda, requireProblem } from './validation';
 /** Default of the largest optimality residual of a fit that is reported. */
 export const FIT_TOLERANCE = 1e-9;
 
-/** Ratio of neighbouring lambdas on the way to a cold one. */
+/** Ratio of neighbouring lambdas on the way to a cold one, and how many there are at most. */
 const APPROACH_RATIO = 0.25;
+const APPROACH_STEPS = 30;
 
 export interface FitOptions {
   /** Largest optimality residual of a converged fit; default 1e-9. */
@@ -18,8 +19,19 @@ export interface FitOptions {
   readonly onIteration?: (objective: number) => void;
 }
 
-/** Deviance of the weighted intercept only (with the offset, if there is one). Newton in one dimension. */
+/**
+ * Deviance of the weighted intercept only (with the offset, if there is one): Newton in one dimension, held inside the bracket that the smallest and
+ * the largest offset give.
+ * @returns 2 sum w_i [log(1 + e^eta_i) - y_i eta_i], weights as given
+ * @throws NumericError for bad arguments
+ * @example nullDeviance({ columns: [], outcome: Uint8Array.of(1, 1, 1, 0), penalty: { mixing: 1, standardize: true } }) // 4.4987
+ */
 export function nullDeviance(problem: FitProblem): number {
+  requireProblem(problem);
+  return devianceOfIntercept(problem);
+}
+
+function devianceOfIntercept(problem: FitProblem): number {
   const { outcome, weights, offset } = problem;
   let good = 0;
   let total = 0;
@@ -28,25 +40,38 @@ export function nullDeviance(problem: FitProblem): number {
     total += w;
     good += w * outcome[i];
   }
-  let intercept = Math.log(good / (total - good));
-  for (let round = 0; offset && round < 100; round++) {
+  const logOdds = Math.log(good / (total - good));
+  const intercept = offset ? interceptWith(offset, outcome, weights, logOdds) : logOdds;
+  let sum = 0;
+  for (let i = 0; i < outcome.length; i++)
+    sum += (weights ? weights[i] : 1) * rowLoss(intercept + (offset ? offset[i] : 0), outcome[i]);
+  return 2 * sum;
+}
+
+/** The intercept that goes with an offset: where sum w (P - y), which rises with it, is 0. */
+function interceptWith(offset: Float64Array, outcome: Uint8Array, weights: Float64Array | undefined, logOdds: number): number {
+  let low = logOdds - offset.reduce((a, b) => Math.max(a, b), -Infinity);
+  let high = logOdds - offset.reduce((a, b) => Math.min(a, b), Infinity);
+  let intercept = (low + high) / 2;
+  // Each round either takes a Newton step or halves the bracket, of which no double has room for more than about 2,100.
+  for (let round = 0; round < 2200 && low < high; round++) {
     let gradient = 0;
     let curvature = 0;
     for (let i = 0; i < outcome.length; i++) {
       const w = weights ? weights[i] : 1;
       const p = probabilityOfGood(intercept + offset[i]);
       gradient += w * (p - outcome[i]);
-      curvature += w * p * (1 - p);
+      curvature += w * p * probabilityOfGood(-intercept - offset[i]);
     }
-    // The step is held to 1: far out the curvature vanishes and a full step would overshoot.
-    const step = Math.max(-1, Math.min(1, gradient / curvature));
-    intercept -= step;
-    if (Math.abs(step) < 1e-14 * Math.max(1, Math.abs(intercept))) break;
+    if (gradient === 0) break;
+    if (gradient < 0) low = intercept;
+    else high = intercept;
+    const newton = intercept - gradient / curvature;
+    const next = newton > low && newton < high ? newton : (low + high) / 2;
+    if (Math.abs(next - intercept) <= 1e-15 * Math.max(1, Math.abs(intercept))) return next;
+    intercept = next;
   }
-  let sum = 0;
-  for (let i = 0; i < outcome.length; i++)
-    sum += (weights ? weights[i] : 1) * rowLoss(intercept + (offset ? offset[i] : 0), outcome[i]);
-  return 2 * sum;
+  return intercept;
 }
 
 /** Fits intercept and unpenalised columns and returns the largest lambda; the solver is left at that fit. */
@@ -58,7 +83,8 @@ export function startAtLargest(solver: Solver): number {
 /** Brings a solver from the largest lambda near to `lambda` by a short, loosely solved path. */
 export function approach(solver: Solver, from: number, lambda: number, options: FitOptions = {}): void {
   const last = lambda > 0 ? lambda / APPROACH_RATIO : from * 1e-4;
-  for (let step = from * APPROACH_RATIO; step >= last && step > 0; step *= APPROACH_RATIO) {
+  const first = Math.min(from * APPROACH_RATIO, last / APPROACH_RATIO ** APPROACH_STEPS);
+  for (let step = first; step >= last && step > 0; step *= APPROACH_RATIO) {
     solver.solve(step, { tolerance: Math.max(1e-3 * step, 1e-7), mostIterations: 50, onIteration: options.onIteration });
   }
 }
@@ -94,9 +120,9 @@ export function fitPath(
   const automatic = !('lambdas' in grid);
   const lambdas = automatic ? automaticGrid(largest, grid.count, grid.smallestRatio) : Array.from(grid.lambdas);
   lambdas.forEach(requireLambda);
-  const nullValue = nullDeviance(problem);
+  const nullValue = devianceOfIntercept(problem);
   const fits: Fit[] = [];
-  let stoppedEarly = false;
+  let stoppedBecause: Path['stoppedBecause'];
   if (lambdas.length > 0) approach(solver, largest, lambdas[0], options);
   for (const [index, lambda] of lambdas.entries()) {
     const fit = solver.solve(lambda, { ...options, tolerance: options.tolerance ?? FIT_TOLERANCE });
@@ -105,18 +131,20 @@ export function fitPath(
     if (!automatic || !grid.earlyStop || index === 0) continue;
     const explained = 1 - fit.deviance / nullValue;
     const gain = (fits[index - 1].deviance - fit.deviance) / nullValue;
-    if ((index >= 4 && gain < 1e-5) || explained > 0.999) {
-      stoppedEarly = index < lambdas.length - 1;
-      break;
-    }
+    if (index === lambdas.length - 1) break;
+    if (explained > 0.999) stoppedBecause = 'explained';
+    else if (index >= 4 && gain < 1e-5) stoppedBecause = 'little-gain';
+    if (stoppedBecause) break;
   }
-  return { fits, nullDeviance: nullValue, largestLambda: largest, stoppedEarly };
+  const told = { fits, nullDeviance: nullValue, largestLambda: largest, stoppedEarly: stoppedBecause !== undefined };
+  return stoppedBecause ? { ...told, stoppedBecause } : told;
 }
 
 /** Logarithmic grid of `count` values from `largest` to `smallestRatio` times it. */
 export function automaticGrid(largest: number, count: number, smallestRatio: number): number[] {
   requireThat(Number.isInteger(count) && count >= 1, 'count', 'count must be a whole number of at least 1.');
   requireThat(smallestRatio > 0 && smallestRatio < 1, 'smallestRatio', 'the smallest ratio lies strictly between 0 and 1.');
+  requireThat(largest < Infinity, 'grid', 'the largest lambda is infinite.');
   requireThat(largest > 0, 'grid', 'no penalised column has a gradient at all, so there is no largest lambda to start from.');
   return Array.from({ length: count }, (_, k) =>
     k === 0 ? largest : largest * Math.exp((Math.log(smallestRatio) * k) / (count - 1)),

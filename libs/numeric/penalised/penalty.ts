@@ -28,12 +28,18 @@ export function scaledPenalty(penalty: Penalty, design: Design): ScaledPenalty {
     const s = design.scale[j];
     const unit = penalty.standardize ? 1 : s;
     absolute[j] = (multiplier * penalty.mixing) / unit;
-    square[j] = (multiplier * (1 - penalty.mixing)) / (unit * unit);
+    // Infinite for an unstandardised column of hardly any spread: such a coefficient is 0 to the last digit, unless lambda is 0.
+    square[j] = (multiplier * (1 - penalty.mixing)) / unit / unit;
     if (penalty.lower) lower[j] = penalty.lower[j] * s;
     if (penalty.upper) upper[j] = penalty.upper[j] * s;
     reporting[j] = unit;
   }
   return { absolute, square, lower, upper, reporting };
+}
+
+/** lambda times a penalty's part; without lambda there is no penalty, however large its part. */
+export function penaltyAt(lambda: number, part: number): number {
+  return lambda === 0 ? 0 : lambda * part;
 }
 
 /** The number nearest to `value` after it has been moved towards 0 by `threshold`. */

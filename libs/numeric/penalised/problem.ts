@@ -46,8 +46,15 @@ export type Grid =
   | { readonly count: number; readonly smallestRatio: number; readonly earlyStop: boolean };
 
 export interface Path {
+  /** One for each lambda up to where the path ends. */
   readonly fits: Fit[];
   readonly nullDeviance: number;
   readonly largestLambda: number;
+  /** The path ends before its automatic grid does. */
   readonly stoppedEarly: boolean;
+  /**
+   * Why it ends early, when it does: the last value gained less than 1e-5 of the null deviance, or more than 0.999 of it is explained, which
+   * smaller lambdas would take towards separation.
+   */
+  readonly stoppedBecause?: 'little-gain' | 'explained';
 }

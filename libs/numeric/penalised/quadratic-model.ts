@@ -75,7 +75,7 @@ function newtonOnFree(model: QuadraticModel, t: Float64Array, gradient: Float64A
   const free: number[] = [];
   for (let j = 0; j < size; j++) {
     const interior = t[j] > lower[j] && t[j] < upper[j];
-    if (interior && (t[j] !== 0 || l1[j] === 0)) free.push(j);
+    if (interior && (t[j] !== 0 || l1[j] === 0) && l2[j] < Infinity) free.push(j);
   }
   const count = free.length;
   if (count === 0) return;

@@ -1,6 +1,6 @@
 import { Design } from './design';
 import { lossAndResidual, rootCurvature } from './loss';
-import { scaledPenalty, violation, type ScaledPenalty } from './penalty';
+import { penaltyAt, scaledPenalty, violation, type ScaledPenalty } from './penalty';
 import type { Fit, FitProblem, FitStatus, Penalty } from './problem';
 import { minimiseModel } from './quadratic-model';
 import { isSeparated } from './separation';
@@ -125,7 +125,7 @@ export class Solver {
     design.gradient(this.residual, list, this.gradient);
     for (const j of design.used) {
       const t = this.t[j];
-      if (t !== 0) objective += lambda * (penalty.absolute[j] * Math.abs(t) + (penalty.square[j] / 2) * t * t);
+      if (t !== 0) objective += penaltyAt(lambda, penalty.absolute[j] * Math.abs(t) + (penalty.square[j] / 2) * t * t);
     }
     return objective;
   }
@@ -135,8 +135,8 @@ export class Solver {
     const inward = violation(
       this.t[j],
       this.gradient[j],
-      lambda * penalty.absolute[j],
-      lambda * penalty.square[j],
+      penaltyAt(lambda, penalty.absolute[j]),
+      penaltyAt(lambda, penalty.square[j]),
       penalty.lower[j],
       penalty.upper[j],
     );
@@ -165,7 +165,7 @@ export class Solver {
   }
 
   private isUnpenalised(j: number, lambda: number): boolean {
-    return lambda * (this.penalty.absolute[j] + this.penalty.square[j]) === 0;
+    return penaltyAt(lambda, this.penalty.absolute[j] + this.penalty.square[j]) === 0;
   }
 
   /**
@@ -178,8 +178,9 @@ export class Solver {
     const known = Number.isFinite(this.previousLambda);
     const slack = known && lambda > 0 ? Math.max(0, 2 - Math.max(1, this.previousLambda / lambda)) : 0;
     return used.filter((j) => {
-      if (this.t[j] !== 0 || this.penalty.absolute[j] * lambda === 0 || !known) return true;
-      return Math.abs(this.gradient[j]) >= slack * lambda * this.penalty.absolute[j];
+      const threshold = penaltyAt(lambda, this.penalty.absolute[j]);
+      if (this.t[j] !== 0 || threshold === 0 || !known) return true;
+      return Math.abs(this.gradient[j]) >= penaltyAt(slack, threshold);
     });
   }
 
@@ -284,8 +285,8 @@ export class Solver {
     const gradient = new Float64Array(size);
     const model = {
       hessian: curvature.eliminated,
-      l1: Float64Array.from(own, (j) => lambda * penalty.absolute[j]),
-      l2: Float64Array.from(own, (j) => lambda * penalty.square[j]),
+      l1: Float64Array.from(own, (j) => penaltyAt(lambda, penalty.absolute[j])),
+      l2: Float64Array.from(own, (j) => penaltyAt(lambda, penalty.square[j])),
       lower: Float64Array.from(own, (j) => penalty.lower[j]),
       upper: Float64Array.from(own, (j) => penalty.upper[j]),
     };
