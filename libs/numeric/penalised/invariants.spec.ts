@@ -3,7 +3,7 @@ import { describe, expect, it } from 'vitest';
 import { weightOfEvidence } from '../binning/weight-of-evidence';
 import { fitIndependently } from '../independent/proximal-gradient';
 import { Generator } from '../random/generator';
-import { problems, randomProblem, seeds } from '../testing/problems';
+import { problems, seeds } from '../testing/problems';
 import { objective, optimalityResidual } from './optimality';
 import { fitAt, fitPath, largestLambda } from './path';
 import type { Fit, FitProblem } from './problem';
@@ -33,15 +33,23 @@ describe('what must hold for every fit', () => {
     );
   });
 
-  it('the objective never rises from one iteration to the next', () => {
+  it('the objective never rises from one iteration to the next, from a warm start or a bad one, with limits or without', () => {
     fc.assert(
-      fc.property(problems, shares, (problem, share) => {
+      fc.property(problems, fc.constantFrom(0, 0.001, 0.05, 0.6), fc.boolean(), fc.boolean(), (problem, share, warm, limited) => {
+        const upper = new Float64Array(problem.columns.length).fill(limited ? 0.2 : Infinity);
+        const own: FitProblem = { ...problem, penalty: { ...problem.penalty, upper } };
         const trace: number[] = [];
-        const start = { ...fitAt(problem, largestLambda(problem)) };
-        fitAt(problem, share * share * largestLambda(problem), { start, onIteration: (value) => trace.push(value) });
-        trace.slice(1).forEach((value, k) => expect(value).toBeLessThanOrEqual(trace[k] + 1e-13));
+        const start = fitAt(own, largestLambda(own));
+        const lambda = share * start.lambda;
+        const point = warm ? start : { ...start, intercept: 3, coefficients: upper.map((_, j) => (j % 2 === 0 ? -1 : 0.1)) };
+        const fit = fitAt(own, lambda, { start: point, onIteration: (value) => trace.push(value) });
+        expect(fit.status).toBe('converged');
+        const values = [objective(own, { ...point, lambda }), ...trace];
+        // Rounding of a mean of 160 terms near 1.
+        values.slice(1).forEach((value, k) => expect(value).toBeLessThanOrEqual(values[k] + 1e-13));
+        expect(values[values.length - 1]).toBeCloseTo(fit.objective, 12);
       }),
-      { numRuns: 60 },
+      { numRuns: 80 },
     );
   });
 
@@ -128,19 +136,33 @@ describe('what must hold for every fit', () => {
     );
   });
 
-  it('no penalised column is in at the largest lambda, and one is just below', () => {
+  it('no penalised column is in at the largest lambda, and one is just below, for every mixing of at least 0.001', () => {
+    const mixing = fc.constantFrom(0.001, 0.01, 0.1, 0.3, 0.5, 0.9, 1);
     fc.assert(
-      fc.property(problems, fc.constantFrom(0.3, 0.5, 1), fc.boolean(), (problem, mixing, oneFree) => {
-        const multipliers = new Float64Array(problem.columns.length).fill(1);
+      fc.property(problems, mixing, fc.boolean(), fc.boolean(), fc.boolean(), (problem, mix, oneFree, limited, weighted) => {
+        const multipliers = Float64Array.from(problem.columns, (_, j) => 1 + (j % 2));
         if (oneFree) multipliers[0] = 0;
-        const own: FitProblem = { ...problem, penalty: { ...problem.penalty, mixing, multipliers } };
+        const own: FitProblem = {
+          ...problem,
+          weights: weighted ? Float64Array.from(problem.outcome, (_, i) => (i % 4) + 0.5) : undefined,
+          offset: weighted ? Float64Array.from(problem.outcome, (_, i) => (i % 3) - 1) : undefined,
+          penalty: {
+            ...problem.penalty,
+            mixing: mix,
+            multipliers,
+            lower: limited ? new Float64Array(problem.columns.length) : undefined,
+          },
+        };
         const largest = largestLambda(own);
+        // With a limit at 0 it can be that no gradient points inward at all: then nothing enters anywhere.
+        fc.pre(largest > 1e-6);
         const kept = (lambda: number): number =>
           fitAt(own, lambda).coefficients.filter((b, j) => b !== 0 && multipliers[j] > 0).length;
         expect(kept(largest)).toBe(0);
+        expect(kept(1.5 * largest)).toBe(0);
         expect(kept(0.999 * largest)).toBeGreaterThanOrEqual(1);
       }),
-      { numRuns: 40 },
+      { numRuns: 80 },
     );
   });
 
@@ -221,18 +243,107 @@ describe('what must hold for every fit', () => {
       fc.property(problems, (problem) => {
         const { fits, nullDeviance } = fitPath(problem, { count: 12, smallestRatio: 0.01, earlyStop: false });
         fits.slice(1).forEach((fit, k) => expect(fit.deviance).toBeLessThanOrEqual(fits[k].deviance + 1e-7 * nullDeviance));
+        const size = fits.map((fit) => (fit.objective - fit.deviance / (2 * problem.outcome.length)) / fit.lambda);
+        size.slice(1).forEach((value, k) => expect(value).toBeGreaterThanOrEqual(size[k] * (1 - 1e-6) - 1e-9));
       }),
       { numRuns: 30 },
     );
   });
 
-  it('duplicate columns under the lasso share the coefficient of one', () => {
-    const problem = randomProblem(3, 150, 3, { mixing: 1, standardize: true });
-    const doubled: FitProblem = { ...problem, columns: [...problem.columns, problem.columns[0]] };
-    const lambda = 0.1 * largestLambda(problem);
-    const one = fitAt(problem, lambda, TIGHT);
-    const two = fitAt(doubled, lambda, TIGHT);
-    expect(two.status).toBe('converged');
-    expect(two.coefficients[0] + two.coefficients[3]).toBeCloseTo(one.coefficients[0], 8);
+  // Two of a column cost lambda (b/2)^2/2 each, together what one costs at half the multiplier.
+  it('a duplicated column shares equally under ridge, and as under half the penalty', () => {
+    fc.assert(
+      fc.property(problems, shares, (drawn, share) => {
+        const problem: FitProblem = { ...drawn, penalty: { ...drawn.penalty, mixing: 0 } };
+        const doubled: FitProblem = { ...problem, columns: [...problem.columns, problem.columns[0]] };
+        const multipliers = Float64Array.from(problem.columns, (_, j) => (j === 0 ? 0.5 : 1));
+        const lambda = 0.01 * share * largestLambda(problem);
+        const two = fitAt(doubled, lambda, TIGHT);
+        const one = fitAt({ ...problem, penalty: { ...problem.penalty, multipliers } }, lambda, TIGHT);
+        const last = two.coefficients.length - 1;
+        expect(two.status).toBe('converged');
+        expect(two.coefficients[0]).toBeCloseTo(two.coefficients[last], 8);
+        expect(two.coefficients[0] + two.coefficients[last]).toBeCloseTo(one.coefficients[0], 7);
+        expect(two.objective).toBeCloseTo(one.objective, 12);
+      }),
+      { numRuns: 40 },
+    );
+  });
+
+  it('a duplicated column under the lasso has many optima: every split of one sign has the same objective, and one is found', () => {
+    fc.assert(
+      fc.property(problems, shares, fc.double({ min: 0, max: 1, noNaN: true }), (drawn, share, part) => {
+        const problem: FitProblem = { ...drawn, penalty: { ...drawn.penalty, mixing: 1 } };
+        const doubled: FitProblem = { ...problem, columns: [...problem.columns, problem.columns[0]] };
+        const lambda = 0.3 * share * largestLambda(problem);
+        const one = fitAt(problem, lambda, TIGHT);
+        const two = fitAt(doubled, lambda, TIGHT);
+        const last = two.coefficients.length - 1;
+        expect(two.status).toBe('converged');
+        expect(two.objective).toBeCloseTo(one.objective, 12);
+        expect(two.coefficients[0] + two.coefficients[last]).toBeCloseTo(one.coefficients[0], 7);
+        expect(two.coefficients[0] * two.coefficients[last]).toBeGreaterThanOrEqual(0);
+        const split = two.coefficients.slice();
+        split[0] = part * one.coefficients[0];
+        split[last] = (1 - part) * one.coefficients[0];
+        const other = { lambda, intercept: two.intercept, coefficients: split };
+        expect(objective(doubled, other)).toBeCloseTo(two.objective, 12);
+        expect(optimalityResidual(doubled, other)).toBeLessThanOrEqual(1e-9);
+      }),
+      { numRuns: 40 },
+    );
+  });
+
+  it('weights count by their proportions, and a shifted column changes the intercept alone', () => {
+    fc.assert(
+      fc.property(
+        problems,
+        shares,
+        fc.constantFrom(0.01, 3, 1e5),
+        fc.constantFrom(-7, 0.3, 100),
+        (problem, share, factor, shift) => {
+          const weights = Float64Array.from(problem.outcome, (_, i) => 1 + (i % 5));
+          const weighted: FitProblem = { ...problem, weights };
+          const lambda = share * largestLambda(weighted);
+          const fit = fitAt(weighted, lambda, TIGHT);
+          const heavier = fitAt({ ...weighted, weights: weights.map((w) => factor * w) }, lambda, TIGHT);
+          expectSame(fit, heavier, 1e-7);
+          const shifted: FitProblem = {
+            ...weighted,
+            columns: problem.columns.map((column, j) => (j === 0 ? column.map((x) => x + shift) : column)),
+          };
+          const moved = fitAt(shifted, lambda, TIGHT);
+          expectSame(fit, { ...moved, intercept: moved.intercept + shift * moved.coefficients[0] }, 1e-6);
+        },
+      ),
+      { numRuns: 40 },
+    );
+  });
+
+  it('standardising is fitting columns that were standardised before', () => {
+    fc.assert(
+      fc.property(problems, shares, seeds, (problem, share, seed) => {
+        const random = new Generator(seed);
+        const weights = Float64Array.from(problem.outcome, () => 0.2 + random.uniform());
+        const total = weights.reduce((sum, w) => sum + w, 0);
+        const mean = (column: Float64Array): number => column.reduce((sum, x, i) => sum + weights[i] * x, 0) / total;
+        const deviations = problem.columns.map((column) => {
+          const centre = mean(column);
+          return Math.sqrt(mean(column.map((x) => (x - centre) ** 2)));
+        });
+        const own: FitProblem = { ...problem, weights, penalty: { ...problem.penalty, standardize: true } };
+        const before: FitProblem = {
+          ...own,
+          columns: own.columns.map((column, j) => column.map((x) => x / deviations[j])),
+          penalty: { ...own.penalty, standardize: false },
+        };
+        const lambda = share * largestLambda(own);
+        const a = fitAt(own, lambda, TIGHT);
+        const b = fitAt(before, lambda, TIGHT);
+        expectSame(a, { ...b, coefficients: b.coefficients.map((value, j) => value / deviations[j]) }, 1e-7);
+        expect(a.objective).toBeCloseTo(b.objective, 12);
+      }),
+      { numRuns: 40 },
+    );
   });
 });
