@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest';
-import { auc, brier, crossValidate, probabilitiesOfBad, type FitProblem } from '@tallystone/numeric';
+import { auc, brier, crossValidate, fitPath, probabilitiesOfBad, type FitProblem } from '@tallystone/numeric';
 import { tableOf } from './penalised-fits';
-import { expectNear, expected } from './reference-files';
+import { expectAllRead, expectNear, expected } from './reference-files';
 
 interface Case {
   readonly data: string;
@@ -19,7 +19,14 @@ interface Case {
   readonly fold_deviance_at_1se: number[];
   readonly index_min_1based: number;
   readonly index_1se_1based: number;
+  readonly lambda_min: number;
+  readonly lambda_1se: number;
+  readonly nonzero_full_fit: number[];
   readonly cvm_brier: number[];
+  readonly cvm_misclass: number[];
+  readonly cvm_auc_foldmean: number[];
+  readonly cvsd_auc_foldmean: number[];
+  readonly index_max_auc_1based: number;
   readonly auc_pooled_out_of_fold: number[];
 }
 
@@ -50,6 +57,8 @@ describe('cross-validation against cv.glmnet 4.1-6 and a manual fold loop', () =
         penalty: { mixing: reference.alpha, standardize: reference.standardize },
       };
       const folds = foldsOf(reference.folds, outcome.length);
+      const full = fitPath(problem, { lambdas: reference.lambda });
+      expect(full.fits.map((fit) => fit.coefficients.filter((b) => b !== 0).length)).toEqual([...reference.nonzero_full_fit]);
       const outOfFold = reference.lambda.map(() => new Float64Array(outcome.length));
       const result = crossValidate(problem, folds, reference.lambda, {
         onFoldFit: (fold, index, _fit, eta) => {
@@ -60,6 +69,8 @@ describe('cross-validation against cv.glmnet 4.1-6 and a manual fold loop', () =
       expect(result.optimalityResidual).toBeLessThanOrEqual(1e-6);
       expect(result.minimum + 1).toBe(reference.index_min_1based);
       expect(result.oneStandardError + 1).toBe(reference.index_1se_1based);
+      expectNear(result.lambdas[result.minimum], reference.lambda_min, 1e-14, 'chosen lambda');
+      expectNear(result.lambdas[result.oneStandardError], reference.lambda_1se, 1e-14, 'chosen lambda');
       expect(result.atGridEnd).toBe([1, reference.lambda.length].includes(reference.index_min_1based));
       result.folds.forEach((fold, k) => {
         expectNear(fold.weight, reference.fold_weight[k], 1e-9, 'fold weight');
@@ -71,9 +82,46 @@ describe('cross-validation against cv.glmnet 4.1-6 and a manual fold loop', () =
         expectNear(result.standardError[k], reference.cvsd_deviance[k], 1e-6, `standard error at ${lambda}`);
         expectNear(brier(probabilitiesOfBad(outOfFold[k]), outcome, weights), reference.cvm_brier[k], 1e-6, `Brier at ${lambda}`);
       });
-      // Pooled out-of-fold AUC, unweighted in the reference; one pair that changes order moves it by 1/(700 x 300) = 5e-6, hence 1e-5.
-      const at = result.minimum;
-      expectNear(auc(outOfFold[at], outcome), reference.auc_pooled_out_of_fold[at], 1e-5, 'pooled AUC');
+      const held = result.folds.map(({ fold }) => Array.from(folds.keys()).filter((i) => folds[i] === fold));
+      const total = reference.fold_weight.reduce((sum, w) => sum + w, 0);
+      const overFolds = (values: number[]): number =>
+        values.reduce((sum, value, k) => sum + reference.fold_weight[k] * value, 0) / total;
+      const errorOver = (values: number[]): number => {
+        const mean = overFolds(values);
+        return Math.sqrt(overFolds(values.map((value) => (value - mean) ** 2)) / (values.length - 1));
+      };
+      const areas = outOfFold.map((eta, k) => {
+        const at = `at ${reference.lambda[k]}`;
+        // Where no column is in, folds of one bad rate have one eta up to the last digit: ties that rounding would break.
+        const scores = eta.map((value) => Math.round(value * 1e9) / 1e9);
+        const misses = outcome.reduce((sum, y, i) => sum + (eta[i] > 0 === (y === 1) ? 0 : (weights?.[i] ?? 1)), 0);
+        expectNear(misses / total, reference.cvm_misclass[k], 1e-12, `misclassified ${at}`);
+        // The areas of the file are unweighted in every case; only their mean over folds is weighted by fold. Nudge -1: all ties between a good and a
+        // bad lost, 0: half of them, 1: all won.
+        const area = (rows: number[], nudge = 0): number =>
+          auc(
+            rows.map((i) => scores[i] + 1e-10 * nudge * outcome[i]),
+            rows.map((i) => outcome[i]),
+          );
+        // One pair that changes order moves the pooled area by 1/(700 x 300) = 5e-6, hence 1e-5; where no column is in, the reference's own rounding
+        // has broken some of the ties between folds.
+        const all = Array.from(folds.keys());
+        const empty = held.every((rows) => rows.every((i) => scores[i] === scores[rows[0]]));
+        const [lost, won] = empty ? [area(all, -1), area(all, 1)] : [area(all), area(all)];
+        expect(reference.auc_pooled_out_of_fold[k], `pooled AUC ${at}`).toBeGreaterThanOrEqual(lost - 1e-5);
+        expect(reference.auc_pooled_out_of_fold[k], `pooled AUC ${at}`).toBeLessThanOrEqual(won + 1e-5);
+        const byFold = held.map((rows) => area(rows));
+        // In a fold of 70 x 30 pairs one that changes order moves the mean of ten by 5e-5.
+        expectNear(overFolds(byFold), reference.cvm_auc_foldmean[k], 5e-5, `AUC by fold ${at}`);
+        expectNear(errorOver(byFold), reference.cvsd_auc_foldmean[k], 5e-5, `its standard error ${at}`);
+        return overFolds(byFold);
+      });
+      expect(areas.indexOf(Math.max(...areas)) + 1).toBe(reference.index_max_auc_1based);
     });
   }
 });
+
+it('reads every figure of the file', () =>
+  expectAllRead('cross_validation.json', {
+    'cases/*/max_diff_to_cv.glmnet': 'how well the two programs behind the file agree with one another',
+  }));

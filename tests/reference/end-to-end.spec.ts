@@ -11,19 +11,23 @@ import {
   impactRatios,
   kolmogorovSmirnov,
   logLoss,
+  optimalityResidual,
   pairedDelong,
   populationStability,
   probabilitiesOfBad,
+  probabilityOfBad,
   quantileType7,
   scaleToPoints,
   spiegelhalter,
   varianceInflation,
   weightOfEvidence,
+  type Fit,
+  type FitProblem,
 } from '@tallystone/numeric';
 import { binsOf, binCount, type BinSpec } from './german-bins';
 import type { E2e, E2eFit, E2eMetrics } from './end-to-end';
 import { tableOf } from './penalised-fits';
-import { expectNear, expected } from './reference-files';
+import { expectAllRead, expectNear, expected } from './reference-files';
 
 // Source: expected/german_end_to_end.json: numpy, checked against glmnet 4.1-6, pROC 1.18 and R's ks.test; two independent programs agree to 1e-11.
 const reference = expected<E2e>('german_end_to_end.json');
@@ -66,28 +70,26 @@ describe('bins and weights of evidence on the training rows', () => {
 
   it('has the split and the variance inflation factors', () => {
     expect([train.length, test.length]).toEqual([reference.n_train, reference.n_test]);
+    const bads = (own: Uint8Array): number => own.reduce((sum, y) => sum + 1 - y, 0);
+    expect([bads(trainOutcome), bads(testOutcome)]).toEqual([reference.bads_train, reference.bads_test]);
     const inflation = varianceInflation(columns);
     names.forEach((name, j) => expectNear(inflation[j], reference.vif_train_classical[name], 1e-9, name));
   });
 });
 
-function fitOf(wanted: E2eFit) {
-  const limited = wanted.fit.upper0 === true;
-  return fitAt(
-    {
-      columns,
-      outcome: trainOutcome,
-      penalty: {
-        mixing: wanted.fit.alpha,
-        standardize: wanted.fit.standardize,
-        lower: limited ? new Float64Array(names.length) : undefined,
-      },
-    },
-    wanted.fit.lambda,
-    // Tighter than the default: AUC and the counts behind Hosmer-Lemeshow hang on the order of near ties.
-    { tolerance: 1e-11 },
-  );
-}
+const problemOf = (wanted: E2eFit): FitProblem => ({
+  columns,
+  outcome: trainOutcome,
+  penalty: {
+    mixing: wanted.fit.alpha,
+    standardize: wanted.fit.standardize,
+    // The reference limits the effect on bad from above.
+    lower: wanted.fit.upper0 === true ? new Float64Array(names.length) : undefined,
+  },
+});
+
+// Tighter than the default: AUC and the counts behind Hosmer-Lemeshow hang on the order of near ties.
+const fitOf = (wanted: E2eFit): Fit => fitAt(problemOf(wanted), wanted.fit.lambda, { tolerance: 1e-11 });
 
 function checkMetrics(
   eta: Float64Array,
@@ -107,6 +109,12 @@ function checkMetrics(
   expectNear(area.upper, wanted.auc_ci95_delong[1], 1e-9, 'upper');
   const ks = kolmogorovSmirnov(eta, own);
   expectNear(ks.ks, wanted.ks, 1e-9, 'KS');
+  // The file names the last PD below the cut, this library the last score below it: neighbours on its two sides.
+  const above = eta.reduce((least, value) => (value > ks.at && value < least ? value : least), Infinity);
+  expectNear(probabilityOfBad(above), wanted.ks_at_p_bad, 1e-8, 'PD at KS');
+  expectNear(offset + factor * above, wanted.ks_at_score, 1e-4, 'score at KS');
+  // Sums in another order can part what is equal in one of them by a last digit: compared at ten decimals, as the file is.
+  expect(new Set(eta.map((value) => Math.round(value * 1e10))).size).toBe(wanted.distinct_eta);
   expectNear(brier(pd, own), wanted.brier, 1e-7, 'Brier');
   expectNear(logLoss(pd, own), wanted.logloss, 1e-7, 'logarithmic loss');
   const hl = hosmerLemeshow(pd, own, { groups: 10, development });
@@ -115,6 +123,7 @@ function checkMetrics(
   expect(hl.table.map((group) => [group.rows, group.bads])).toEqual(
     wanted.hl_quantile10.table_n_obs_exp.map(([n, bads]) => [n, bads]),
   );
+  hl.table.forEach((group, g) => expectNear(group.expectedBads, wanted.hl_quantile10.table_n_obs_exp[g][2], 1e-6, `group ${g}`));
   // The file counts G - 2 everywhere; the p-value for G - 2 is compared, whichever this project takes for the part.
   const twoLess = hosmerLemeshow(pd, own, { groups: 10, development: true });
   expect(twoLess.degreesOfFreedom).toBe(wanted.hl_quantile10.df);
@@ -156,6 +165,12 @@ reference.fits.forEach((wanted, index) => {
       expectNear(fit.intercept, -wanted.intercept, 1e-8);
       names.forEach((name, j) => expectNear(fit.coefficients[j], -wanted.coef[name], 1e-8, name));
       expectNear(fit.objective, wanted.objective, 1e-10);
+      const theirs = {
+        lambda: wanted.fit.lambda,
+        intercept: -wanted.intercept,
+        coefficients: Float64Array.from(names, (name) => -wanted.coef[name]),
+      };
+      expect(optimalityResidual(problemOf(wanted), theirs)).toBeLessThanOrEqual(wanted.kkt_max + 1e-12);
     });
 
     it('has the points in base and spread form, and rounded', () => {
@@ -171,6 +186,7 @@ reference.fits.forEach((wanted, index) => {
       wanted.first_test_rows.forEach((row) => {
         const place = test.indexOf(row.row - 1);
         expectNear(etaTest[place], -row.eta, 1e-7, 'eta');
+        expectNear(probabilityOfBad(etaTest[place]), row.p_bad, 1e-7, 'PD');
         expectNear(scoreTest[place], row.score, 1e-4, 'score');
         const rounded = kept.reduce((sum, j, k) => sum + spread.pointsRounded[k][characteristics[j].bins[row.row - 1]], 0);
         expect(rounded).toBe(row.rounded_score);
@@ -217,6 +233,7 @@ reference.fits.forEach((wanted, index) => {
       const age = raw.numbers('age');
       const rate = (young: boolean): number => {
         const group = test.flatMap((i, k) => (age[i] <= 25 === young ? [scoreTest[k]] : []));
+        expect(group).toHaveLength(young ? wanted.adverse_impact.n_group : wanted.adverse_impact.n_reference);
         return group.filter((score) => score >= wanted.adverse_impact.cutoff).length / group.length;
       };
       expectNear(rate(true), wanted.adverse_impact.rate_group, 1e-12);
@@ -238,3 +255,10 @@ it('tests fit 0 against fit 1 on the test rows as pROC does', () => {
   expectNear(paired.z, wanted.z, 1e-7);
   expectNear(paired.pValue, wanted.p, 1e-7);
 });
+
+it('reads every figure of the file', () =>
+  expectAllRead('german_end_to_end.json', {
+    'fits/*/max_abs_diff_R': 'how well the programs behind the file agree with one another',
+    'fits/*/cross_check/*': 'how well the programs behind the file agree with one another',
+    'fits/*/metrics/*/hl_rank10/**': 'groups by rank split rows of equal PD, which this library never does',
+  }));

@@ -7,6 +7,8 @@ export interface E2eMetrics {
   readonly auc_se_delong: number;
   readonly auc_ci95_delong: [number, number];
   readonly ks: number;
+  readonly ks_at_p_bad: number;
+  readonly ks_at_score: number;
   readonly brier: number;
   readonly logloss: number;
   readonly mean_p: number;
@@ -20,6 +22,7 @@ export interface E2eMetrics {
   };
   readonly auc_rounded_score: number;
   readonly mean_score: number;
+  readonly distinct_eta: number;
   readonly calibration_in_the_large: number;
   readonly calibration_slope: { readonly intercept: number; readonly slope: number; readonly se_slope: number };
   readonly spiegelhalter_z: number;
@@ -31,6 +34,7 @@ export interface E2eFit {
   readonly coef: Record<string, number>;
   readonly nonzero: string[];
   readonly objective: number;
+  readonly kkt_max: number;
   readonly factor: number;
   readonly offset: number;
   readonly base_points_A: number;
@@ -41,6 +45,7 @@ export interface E2eFit {
   readonly first_test_rows: {
     readonly row: number;
     readonly eta: number;
+    readonly p_bad: number;
     readonly score: number;
     readonly rounded_score: number;
   }[];
@@ -61,6 +66,8 @@ export interface E2eFit {
   readonly cutoff_at_600: { readonly approved_test: number; readonly bad_among_approved: number };
   readonly adverse_impact: {
     readonly cutoff: number;
+    readonly n_group: number;
+    readonly n_reference: number;
     readonly rate_group: number;
     readonly rate_reference: number;
     readonly ratio: number;
@@ -70,6 +77,8 @@ export interface E2eFit {
 export interface E2e {
   readonly n_train: number;
   readonly n_test: number;
+  readonly bads_train: number;
+  readonly bads_test: number;
   readonly pdo: number;
   readonly odds: number;
   readonly score: number;

@@ -1,8 +1,12 @@
 import { describe, expect, it } from 'vitest';
+import { Matrix, inverse } from 'ml-matrix';
 import {
   conditionIndex,
   fitAt,
   fitForeignChallenger,
+  normalQuantile,
+  nullDeviance,
+  rateInterval,
   standardErrors,
   varianceInflation,
   weightOfEvidence,
@@ -10,13 +14,16 @@ import {
 } from '@tallystone/numeric';
 import { countsOf, type BinSpec } from './german-bins';
 import { tableOf } from './penalised-fits';
-import { expectNear, expected } from './reference-files';
+import { expectAllRead, expectNear, expected } from './reference-files';
 
 interface Bin {
   readonly label: string;
   readonly n: number;
   readonly good: number;
   readonly bad: number;
+  readonly bad_rate: number;
+  readonly pct_good: number;
+  readonly pct_bad: number;
   readonly woe: number;
   readonly iv: number;
 }
@@ -52,6 +59,9 @@ describe('weight of evidence of German credit', () => {
     const result = weightOfEvidence(counts.goods, counts.bads, never);
     variable.table.forEach((bin, i) => {
       expect([counts.rows[i], counts.goods[i], counts.bads[i]]).toEqual([bin.n, bin.good, bin.bad]);
+      expectNear(rateInterval(counts.bads[i], counts.rows[i])?.rate ?? NaN, bin.bad_rate, 1e-14, bin.label);
+      expectNear(counts.goods[i] / 700, bin.pct_good, 1e-14, bin.label);
+      expectNear(counts.bads[i] / 300, bin.pct_bad, 1e-14, bin.label);
       expectNear(result.woe[i], bin.woe, 1e-12, `${column} ${bin.label}`);
       expectNear(result.parts[i], bin.iv, 1e-12, `${column} ${bin.label}`);
     });
@@ -74,7 +84,9 @@ describe('weight of evidence of German credit', () => {
       const counts = countsOf(raw, column, spec, outcome);
       return [column, weightOfEvidence(counts.goods, counts.bads, never).informationValue];
     });
-    expect(own.sort((a, b) => b[1] - a[1]).map(([column]) => column)).toEqual(file.iv_ranking.map(([column]) => column));
+    own.sort((a, b) => b[1] - a[1]);
+    expect(own.map(([column]) => column)).toEqual(file.iv_ranking.map(([column]) => column));
+    own.forEach(([column, value], place) => expectNear(value, file.iv_ranking[place][1], 1e-12, column));
   });
 
   it('edges on observed values: right-closed and left-closed bins differ as they should', () => {
@@ -113,9 +125,15 @@ describe('the unpenalised fit on WOE-coded German credit', () => {
       readonly term: string[];
       readonly estimate: number[];
       readonly se: number[];
+      readonly z: number[];
       readonly loglik: number;
       readonly deviance: number;
+      readonly null_deviance: number;
+      readonly aic: number;
     };
+    readonly wald_ci95: { readonly lower: number[]; readonly upper: number[] };
+    readonly vcov_diag: number[];
+    readonly vif_from_glm_vcov: { readonly value: Record<string, number> };
     readonly vif_classical: { readonly value: Record<string, number> };
     readonly corr_condition_number: number;
   }
@@ -138,6 +156,28 @@ describe('the unpenalised fit on WOE-coded German credit', () => {
     );
     expectNear(fit.deviance, reference.fit.deviance, 1e-9 * reference.fit.deviance);
     expectNear(-fit.deviance / 2, reference.fit.loglik, 1e-8);
+    expectNear(nullDeviance(problem), reference.fit.null_deviance, 1e-8);
+    expectNear(fit.deviance + 2 * 21, reference.fit.aic, 1e-8);
+    // Signs and sides turn with the event.
+    const reach = normalQuantile(0.975);
+    [fit.intercept, ...fit.coefficients].forEach((value, j) => {
+      const error = j === 0 ? errors.intercept : errors.coefficients[j - 1];
+      expectNear(value / error, -reference.fit.z[j], 1e-7, reference.fit.term[j]);
+      expectNear(-(value + reach * error), reference.wald_ci95.lower[j], 1e-7, reference.fit.term[j]);
+      expectNear(-(value - reach * error), reference.wald_ci95.upper[j], 1e-7, reference.fit.term[j]);
+      expectNear(
+        errors.covariance[j][j],
+        reference.vcov_diag[j],
+        1e-8 * Math.max(1, reference.vcov_diag[j]),
+        reference.fit.term[j],
+      );
+    });
+    // Inflation by the fit's own weighting: the inverse of the correlation of the estimates, intercept left out.
+    const correlations = names.map((_, j) =>
+      names.map((__, k) => errors.covariance[j + 1][k + 1] / (errors.coefficients[j] * errors.coefficients[k])),
+    );
+    const inflation = inverse(new Matrix(correlations));
+    names.forEach((name, j) => expectNear(inflation.get(j, j), reference.vif_from_glm_vcov.value[name], 1e-8, name));
   });
 
   it('has the classical variance inflation factors', () => {
@@ -156,3 +196,8 @@ describe('the unpenalised fit on WOE-coded German credit', () => {
     own.coefficients.forEach((value, j) => expectNear(foreign.coefficients[j], value, 1e-3, names[j]));
   });
 });
+
+it('reads every figure of german_woe_bins', () =>
+  expectAllRead('german_woe_bins.json', { 'variables/*/spec/missing': 'no characteristic has a missing value' }));
+
+it('reads every figure of german_woe_glm_vif', () => expectAllRead('german_woe_glm_vif.json'));

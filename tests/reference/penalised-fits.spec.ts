@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { fitAt, fitIndependently, fitPath, objective, optimalityResidual } from '@tallystone/numeric';
 import { needOtherData, problemOf, referenceFits } from './penalised-fits';
-import { expectNear, expected } from './reference-files';
+import { expectAllRead, expectNear, expected } from './reference-files';
 
 const withData = referenceFits.filter((fit) => !fit.data.includes('saheart') && !fit.data.includes('uci'));
 
@@ -18,7 +18,15 @@ describe('penalised fits against glmnet 4.1-6 and an independent Newton solve', 
     it(reference.id, () => {
       const { problem, sign } = problemOf(reference);
       const path = fitPath(problem, { lambdas: reference.lambda_path.map(({ lambda }) => lambda) });
+      expect(problem.outcome).toHaveLength(reference.n);
       expectNear(path.nullDeviance, reference.null_deviance, 1e-9 * reference.null_deviance, 'null deviance');
+      expectNear(path.nullDeviance, reference.glmnet_nulldev, 1e-9 * reference.null_deviance, 'null deviance');
+      if (reference.penalty_factor_given) {
+        // The reference rescales factors to sum to the number of columns; here they are used as given.
+        const total = reference.penalty_factor_given.reduce((sum, factor) => sum + factor, 0);
+        const used = reference.penalty_factor_given.map((factor) => (factor * reference.x.length) / total);
+        used.forEach((factor, j) => expectNear(problem.penalty.multipliers?.[j] ?? NaN, factor, 1e-12, 'penalty factor'));
+      }
       expect(path.stoppedEarly).toBe(false);
       path.fits.forEach((fit, k) => {
         const point = reference.lambda_path[k];
@@ -30,6 +38,16 @@ describe('penalised fits against glmnet 4.1-6 and an independent Newton solve', 
         expectNear(fit.objective, point.objective, 1e-10 * point.objective, 'objective');
         // The deviance is not stationary at a penalised optimum, so it carries the coefficients' first-order error.
         expectNear(fit.deviance, point.deviance, 1e-8 * point.deviance, 'deviance');
+        expectNear(fit.deviance, point.glmnet_deviance, 1e-8 * point.deviance, 'deviance');
+        expectNear(1 - fit.deviance / path.nullDeviance, point.dev_ratio, 1e-8, 'explained share');
+        expect(fit.coefficients.filter((b) => b !== 0)).toHaveLength(point.nonzero);
+        // The residual as defined here finds nothing wrong with the reference's own coefficients either.
+        const theirs = {
+          lambda: point.lambda,
+          intercept: sign * point.intercept,
+          coefficients: Float64Array.from(point.coef, (b) => sign * b),
+        };
+        expect(optimalityResidual(problem, theirs)).toBeLessThanOrEqual(point.kkt_max + 1e-12);
         expectNear(fit.intercept, sign * point.intercept, 1e-6, `intercept at ${point.lambda}`);
         point.coef.forEach((value, j) =>
           expectNear(fit.coefficients[j], sign * value, 1e-6, `${reference.x[j]} at ${point.lambda}`),
@@ -62,6 +80,7 @@ describe('penalised fits against scikit-learn 1.2.1', () => {
     readonly C: number;
     readonly solver: string;
     readonly intercept: number;
+    readonly l1_ratio: number | null;
     readonly max_abs_diff: number;
   }
   // Source: expected/sklearn_crosscheck.json, generators/sklearn_crosscheck.py; C = 1/(lambda sum w).
@@ -76,6 +95,21 @@ describe('penalised fits against scikit-learn 1.2.1', () => {
     const gap = Math.abs(sign * fit.intercept - row.intercept);
     // liblinear penalises the intercept, so it must not agree; the others are as good as the file says they are.
     if (row.solver === 'liblinear') expect(gap).toBeGreaterThan(1e-3);
-    else expect(gap).toBeLessThanOrEqual(row.max_abs_diff + 1e-6);
+    expect(gap).toBeLessThanOrEqual(row.max_abs_diff + 1e-6);
+    if (row.l1_ratio !== null) expect(row.l1_ratio).toBe(reference.alpha);
   });
 });
+
+it('reads every figure of penalised_logistic_fits', () =>
+  expectAllRead('penalised_logistic_fits.json', {
+    'fits/*/lambda_path/*/max_abs_diff_glmnet_thresh1e26': 'how well the two programs behind the file agree with one another',
+    'fits/*/lambda_path/*/max_abs_diff_glmnet_thresh1e14': 'how far glmnet is off at a looser threshold',
+    ...Object.fromEntries(
+      referenceFits.flatMap(({ id }, place) =>
+        needOtherData.includes(id) ? [[`fits/${place}/**`, 'its data may not be passed on']] : [],
+      ),
+    ),
+  }));
+
+it('reads every figure of sklearn_crosscheck', () =>
+  expectAllRead('sklearn_crosscheck.json', { 'rows/*/n_iter': "the other program's iterations" }));

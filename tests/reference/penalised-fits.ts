@@ -11,6 +11,11 @@ export interface ReferencePoint {
   readonly coef: number[];
   readonly objective: number;
   readonly deviance: number;
+  readonly nonzero: number;
+  readonly dev_ratio: number;
+  readonly glmnet_deviance: number;
+  /** Optimality residual of these coefficients, by the program that made them. */
+  readonly kkt_max: number;
 }
 
 export interface ReferenceFit {
@@ -24,8 +29,11 @@ export interface ReferenceFit {
   readonly offset: string | null;
   readonly lower_limits: number | null;
   readonly upper_limits: number | null;
+  readonly n: number;
+  readonly penalty_factor_given?: number[] | null;
   readonly penalty_factor_used: number[] | null;
   readonly null_deviance: number;
+  readonly glmnet_nulldev: number;
   readonly lambda_path: ReferencePoint[];
 }
 

@@ -20,9 +20,9 @@ type Numbers = Record<string, number>;
 const repeat = (value: number, times: number): number[] => Array.from({ length: times }, () => value);
 
 /** Two rows, x = -1 and 1, bad and good. */
-const twoPoints = (mixing: number): FitProblem => ({
-  columns: [Float64Array.of(-1, 1)],
-  outcome: Uint8Array.of(0, 1),
+const twoPoints = (mixing: number, { x, y }: Record<string, number[]>): FitProblem => ({
+  columns: [Float64Array.from(x)],
+  outcome: Uint8Array.from(y),
   penalty: { mixing, standardize: false },
 });
 
@@ -41,7 +41,7 @@ export const fitChecks: Record<string, Handler> = {
   /** Good 1950: an unpenalised fit on one unsmoothed WOE column has slope 1 and the prior log odds as intercept. */
   single_woe_logistic_identity: (
     { good, bad }: Record<string, number[]>,
-    wanted: { woe: number[]; model_good: Numbers; fitted_bad_rate: number[] },
+    wanted: { woe: number[]; model_good: Numbers; model_bad: Numbers; fitted_bad_rate: number[] },
   ) => {
     const { woe } = weightOfEvidence(good, bad, { amount: 0, when: 'never' });
     wanted.woe.forEach((value, i) => expectNear(woe[i], value, 1e-12));
@@ -54,28 +54,31 @@ export const fitChecks: Record<string, Handler> = {
     const fit = fitAt(problem, 0, { tolerance: 1e-13 });
     expectNear(fit.coefficients[0], wanted.model_good.slope, 1e-10);
     expectNear(fit.intercept, wanted.model_good.intercept, 1e-10);
+    const mirrored = fitAt({ ...problem, outcome: problem.outcome.map((y) => 1 - y) }, 0, { tolerance: 1e-13 });
+    expectNear(mirrored.coefficients[0], wanted.model_bad.slope, 1e-10);
+    expectNear(mirrored.intercept, wanted.model_bad.intercept, 1e-10);
     wanted.fitted_bad_rate.forEach((rate, i) =>
       expectNear(probabilityOfBad(fit.intercept + fit.coefficients[0] * woe[i]), rate, 1e-10),
     );
   },
   /** Closed form ln((1 - lambda)/lambda): separated data have a finite penalised optimum and no unpenalised one. */
-  l1_two_point_closed_form: ({ lambda_ }: Record<string, number[]>, wanted: { beta_l1: number[] }) => {
-    lambda_.forEach((lambda, i) => {
+  l1_two_point_closed_form: (inputs: Record<string, number[]>, wanted: { beta_l1: number[] }) => {
+    inputs.lambda_.forEach((lambda, i) => {
       for (const fit of [
-        fitAt(twoPoints(1), lambda, { tolerance: 1e-12 }),
-        fitIndependently(twoPoints(1), lambda, { tolerance: 1e-12 }),
+        fitAt(twoPoints(1, inputs), lambda, { tolerance: 1e-12 }),
+        fitIndependently(twoPoints(1, inputs), lambda, { tolerance: 1e-12 }),
       ]) {
         expect(fit.status).toBe('converged');
         expectNear(fit.coefficients[0], wanted.beta_l1[i], 1e-10);
         expectNear(fit.intercept, 0, 1e-10);
       }
     });
-    expect(fitAt(twoPoints(1), 0).status).toBe('separation');
+    expect(fitAt(twoPoints(1, inputs), 0).status).toBe('separation');
   },
   /** lambda b = 1/(1 + e^b). */
-  ridge_two_point: ({ lambda_ }: Record<string, number[]>, wanted: { beta_l2: number[] }) =>
-    lambda_.forEach((lambda, i) =>
-      expectNear(fitAt(twoPoints(0), lambda, { tolerance: 1e-13 }).coefficients[0], wanted.beta_l2[i], 1e-10),
+  ridge_two_point: (inputs: Record<string, number[]>, wanted: { beta_l2: number[] }) =>
+    inputs.lambda_.forEach((lambda, i) =>
+      expectNear(fitAt(twoPoints(0, inputs), lambda, { tolerance: 1e-13 }).coefficients[0], wanted.beta_l2[i], 1e-10),
     ),
   ridge_duplicate_column: (_: unknown, wanted: Record<string, { intercept: number; coef: number[] }>) => {
     const table = tableOf('data/pima.csv');
@@ -136,8 +139,9 @@ export const fitChecks: Record<string, Handler> = {
   prior_correction: ({ ybar, tau, b0 }: Numbers, wanted: Numbers) =>
     expectNear(priorCorrectedIntercept(-b0, ybar, tau), -wanted.b0_corrected, 1e-12),
   /** Efron and Tibshirani 1993: ideal bootstrap of a mean, all 5^5 resamples enumerated. Monte-Carlo error only, four of its standard errors. */
-  exact_bootstrap_mean: ({ x }: { x: number[] }, wanted: { se: number; q025_q975_inverted_cdf: number[] }) => {
+  exact_bootstrap_mean: ({ x }: { x: number[] }, wanted: { se: number; formula: number; q025_q975_inverted_cdf: number[] }) => {
     const count = 20_000;
+    expectNear(deviation(Float64Array.from(x)) / Math.sqrt(x.length), wanted.formula, 1e-14);
     const means = overResamples(
       Uint8Array.from(repeat(1, x.length)),
       count,
@@ -155,6 +159,7 @@ export const fitChecks: Record<string, Handler> = {
     const scores = [...bad_scores, ...good_scores].map((s) => -s);
     const outcome = Uint8Array.from([...repeat(0, bad_scores.length), ...repeat(1, good_scores.length)]);
     const areas = overResamples(outcome, count, (weights) => auc(scores, outcome, weights));
+    expectNear(auc(scores, outcome), wanted.auc, 1e-14);
     expectNear(mean(areas), wanted.bootstrap_mean, (4 * wanted.bootstrap_se) / Math.sqrt(count));
     expectNear(deviation(areas), wanted.bootstrap_se, (4 * wanted.bootstrap_se) / Math.sqrt(2 * count));
     expectNear(quantileType7(areas, 0.025), wanted.q025, 1e-9);

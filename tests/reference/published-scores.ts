@@ -27,6 +27,7 @@ import {
   scaleToPoints,
   spiegelhalter,
   stabilityCriticalValue,
+  stabilitySampling,
   varianceInflation,
   weightOfEvidence,
   wilsonInterval,
@@ -90,7 +91,7 @@ const interval: Handler = ({ x, n, conf }: Numbers, wanted: Record<string, numbe
 
 const scaling: Handler = (
   { score0, odds0, pdo }: Numbers,
-  wanted: { factor: number; offset: number; score_at_odds?: Numbers },
+  wanted: { factor: number; offset: number; published?: number[]; score_at_odds?: Numbers },
 ) => {
   const points = scaleToPoints(
     { pointsToDouble: pdo, baseScore: score0, baseOdds: odds0, intercept: 'base', rounding: 'nearest' },
@@ -98,6 +99,11 @@ const scaling: Handler = (
   );
   expectNear(points.factor, wanted.factor, 1e-10);
   expectNear(points.offset, wanted.offset, 1e-10);
+  // Printed to four and to three decimals.
+  if (wanted.published) {
+    expectNear(points.factor, wanted.published[0], 5e-5);
+    expectNear(points.offset, wanted.published[1], 5e-4);
+  }
   Object.entries(wanted.score_at_odds ?? {}).forEach(([odds, score]) =>
     expectNear(points.offset + points.factor * Math.log(Number(odds)), score, 1e-10),
   );
@@ -159,6 +165,9 @@ export const scoreChecks: Record<string, Handler> = {
     expectNear(hanleyMcNeilStandardError(own.auc, 51, 58), wanted.se_exponential_formula, 1e-10);
     const fromTable = hanleyMcNeilStandardError(own.auc, 51, 58, { q1: wanted.Q1_table, q2: wanted.Q2_table });
     expectNear(fromTable, wanted.se_from_table_Q, 1e-10);
+    // The approximation is the function's own when no Q is given.
+    const exponential = hanleyMcNeilStandardError(own.auc, 51, 58, { q1: wanted.Q1_exponential, q2: wanted.Q2_exponential });
+    expectNear(exponential, wanted.se_exponential_formula, 1e-12);
     expectNear(own.auc, wanted.published_auc, 5e-4);
     expectNear(fromTable, wanted.published_se, 5e-4);
   },
@@ -203,8 +212,20 @@ export const scoreChecks: Record<string, Handler> = {
     expectNear(weightOfEvidence(actual, expected, never).informationValue, wanted.psi, 1e-14);
   },
   /** Yurdakul 2018. */
-  psi_reference_distribution: ({ N, M, B }: { N: number[]; M: number[]; B: number }, wanted: Record<string, number[]>) => {
+  psi_reference_distribution: (
+    { N, M, B }: { N: number[]; M: number[]; B: number },
+    wanted: Record<string, number[]>,
+    simulation: Numbers,
+  ) => {
+    const law = stabilitySampling(simulation.theory_q95, simulation.N, simulation.M, B);
+    expectNear(law.expectation, simulation.theory_mean, 1e-14);
+    expectNear(law.pValue, 0.05, 1e-12);
+    // The reference's simulation: the mean has the law's standard deviation over sqrt(reps), a 95 % quantile 2.11 times that.
+    const error = law.standardDeviation / Math.sqrt(simulation.reps);
+    expectNear(simulation.mean, law.expectation, 4 * error);
+    expectNear(simulation.q95, stabilityCriticalValue(simulation.N, simulation.M, B, 0.95), 4 * 2.11 * 1.1 * error);
     N.forEach((rows, i) => {
+      expectNear(stabilitySampling(wanted.crit99[i], rows, M[i], B).pValue, 0.01, 1e-12);
       expectNear(stabilityCriticalValue(rows, M[i], B, 0.95), wanted.crit95[i], 1e-10);
       expectNear(stabilityCriticalValue(rows, M[i], B, 0.99), wanted.crit99[i], 1e-10);
       const normal = (1 / rows + 1 / M[i]) * (B - 1 + normalQuantile(0.95) * Math.sqrt(2 * (B - 1)));
@@ -259,6 +280,8 @@ export const scoreChecks: Record<string, Handler> = {
   },
   concentration_test: ({ counts_initial, counts_current }: Record<string, number[]>, wanted: Numbers) => {
     const own = concentrationTest(counts_initial, counts_current);
+    expectNear(herfindahl(counts_initial).coefficientOfVariation, wanted.cv_init, 1e-12);
+    expectNear(herfindahl(counts_current).coefficientOfVariation, wanted.cv_curr, 1e-12);
     eachNear([own.z, own.pValue], [wanted.z, wanted.p], 1e-12);
   },
   /** Murphy 1973; Spiegelhalter 1986. */
