@@ -1,0 +1,370 @@
+import { summarise, type CrossValidation, type FoldResult } from '../penalised/folds';
+import { rowLoss } from '../penalised/loss';
+import { automaticGrid, type FitOptions } from '../penalised/path';
+import { violation } from '../penalised/penalty';
+import type { Fit, Grid, Path } from '../penalised/problem';
+import { requireLambda } from '../penalised/validation';
+import type { CodedProblem } from './coded-columns';
+import { Alone, type Crew } from './crew';
+import { follow, type Follower } from './follow';
+import type { KernelKind } from './kernels/kernels';
+import { copyPoint, pointOf, residualAt, type Lane, type Point } from './lane';
+import { layOut, LANES_SINGLE, type Layout } from './layout';
+import { Passes, type Precision } from './passes';
+import { fromTables, fullStandardisation, ownStandardisation, weightSums, type Standardisation } from './standardisation';
+import { solvePath, type Solved, type Target } from './wavefront';
+
+/** Largest optimality residual of path points and folds unless another is asked for. */
+export const PATH_TOLERANCE = 1e-6;
+
+/** What singles are asked for: their rounding adds some 1e-7 to the residual. */
+const SINGLE_TOLERANCE = 5e-7;
+
+/** Neighbouring lambdas on the way to a cold one. */
+const APPROACH_RATIO = 0.5;
+const BATCH = 8;
+
+export interface EngineOptions {
+  /** Fold of each row from 1; absent = none. */
+  readonly folds?: Uint8Array;
+  readonly crew?: Crew;
+  readonly kernels?: KernelKind;
+  readonly counted?: boolean;
+}
+
+export interface EngineFolds {
+  readonly tolerance?: number;
+  /** Values by code of each column in a fold (number from 1), computed from its training rows; null = those of the problem. */
+  readonly valuesForFold?: (fold: number) => readonly ArrayLike<number>[] | null;
+  readonly onFold?: (done: number, count: number) => void;
+  readonly onFoldFit?: (fold: number, index: number, fit: { intercept: number; coefficients: Float64Array; optimalityResidual: number }) => void;
+}
+
+/** Folds that did not converge have no deviances: `null`. */
+export interface EngineCrossValidation {
+  readonly folds: readonly (FoldResult | null)[];
+  readonly optimalityResidual: number;
+}
+
+/**
+ * The fast solver for one problem: laid out once, then asked for paths, folds and single fits. Definitions are those of `penalised/`; every reported fit
+ * carries the residual of its exact gradient in double precision.
+ * @example new Engine({ columns: codedColumns(columns), outcome, penalty }).path({ count: 100, smallestRatio: 1e-4, earlyStop: true })
+ */
+export class Engine {
+  readonly layout: Layout;
+  readonly passes: Passes;
+  readonly full: Standardisation;
+  private guide: { lambdas: readonly number[]; points: readonly Point[] } | null = null;
+  private begun: Point | null = null;
+
+  constructor(
+    readonly problem: CodedProblem,
+    options: EngineOptions = {},
+  ) {
+    const { crew = new Alone() } = options;
+    this.layout = layOut(problem, {
+      ...(options.folds ? { folds: options.folds.map((fold) => fold - 1) } : {}),
+      kernels: options.kernels,
+      workers: 1 + crew.helpers,
+      counted: options.counted,
+    });
+    this.passes = new Passes(this.layout, crew);
+    this.full = fullStandardisation(problem, this.layout);
+  }
+
+  close(): void {
+    this.passes.close();
+  }
+
+  /** The fit of intercept and unpenalised columns, with the gradient of all. */
+  private begin(): Point {
+    if (this.begun) return this.begun;
+    const { full, layout, problem, passes } = this;
+    const size = layout.columns.length;
+    const point = pointOf(size);
+    let good = 0;
+    let total = 0;
+    for (const i of layout.order) {
+      const w = problem.weights ? problem.weights[i] : 1;
+      total += w;
+      good += w * problem.outcome[i];
+    }
+    point.intercept = Math.log(good / (total - good));
+    const free = full.used.map((used, j) => (used && full.absolute[j] + full.square[j] === 0 ? 1 : 0));
+    const lane = { point, standardisation: full, leftOut: -1, heldOut: 0 };
+    passes.run([lane], 'double');
+    if (problem.offset || free.includes(1)) {
+      const restricted = { ...full, used: free };
+      solvePath(passes, point, [{ lambda: 0, tolerance: 1e-12 }], {
+        precision: 'double',
+        standardisation: restricted,
+        lanes: 1,
+        onSolved: (solved) => {
+          copyPoint(solved.point, point);
+          return true;
+        },
+      });
+      passes.run([lane], 'double');
+    }
+    return (this.begun = point);
+  }
+
+  /** Largest lambda, as `largestLambda` defines it. */
+  largestLambda(): number {
+    const point = this.begin();
+    const { full } = this;
+    let largest = 0;
+    for (let j = 0; j < full.used.length; j++) {
+      if (full.used[j] === 0 || full.multipliers[j] === 0) continue;
+      const inward = violation(0, point.gradient[j], 0, 0, full.lower[j], full.upper[j]) * full.reporting[j];
+      largest = Math.max(largest, inward / full.multipliers[j] / Math.max(this.problem.penalty.mixing, 0.001));
+    }
+    return largest;
+  }
+
+  nullDeviance(): number {
+    const { layout, problem } = this;
+    let good = 0;
+    let total = 0;
+    for (const i of layout.order) {
+      const w = problem.weights ? problem.weights[i] : 1;
+      total += w;
+      good += w * problem.outcome[i];
+    }
+    const intercept = Math.log(good / (total - good));
+    if (!problem.offset) return 2 * (good * rowLoss(intercept, 1) + (total - good) * rowLoss(intercept, 0));
+    const point = pointOf(layout.columns.length);
+    point.intercept = intercept;
+    const none = { ...this.full, used: new Uint8Array(this.full.used.length) };
+    let loss = NaN;
+    this.passes.run([{ point, standardisation: none, leftOut: -1, heldOut: 0 }], 'double');
+    solvePath(this.passes, point, [{ lambda: 0, tolerance: 1e-12 }], {
+      precision: 'double',
+      standardisation: none,
+      lanes: 1,
+      onSolved: (solved) => {
+        loss = solved.point.loss;
+        return true;
+      },
+    });
+    return 2 * total * loss;
+  }
+
+  /** As `fitPath`. Singles find the points, doubles prove and finish them. */
+  path(grid: Grid, options: FitOptions & { readonly onFit?: (fit: Fit, index: number, count: number) => void } = {}): Path {
+    const start = this.begin();
+    const largest = this.largestLambda();
+    const automatic = !('lambdas' in grid);
+    const lambdas = automatic ? automaticGrid(largest, grid.count, grid.smallestRatio) : Array.from(grid.lambdas);
+    lambdas.forEach(requireLambda);
+    const nullDeviance = this.nullDeviance();
+    const tolerance = options.tolerance ?? PATH_TOLERANCE;
+    const fits: Fit[] = [];
+    const points: Point[] = [];
+    let stoppedEarly = false;
+    const report = (solved: Solved): boolean => {
+      const index = fits.length;
+      const fit = this.fitOf(solved);
+      fits.push(fit);
+      points.push(solved.point);
+      options.onFit?.(fit, index, lambdas.length);
+      if (!automatic || !grid.earlyStop || index === 0) return false;
+      const explained = 1 - fit.deviance / nullDeviance;
+      const gain = (fits[index - 1].deviance - fit.deviance) / nullDeviance;
+      if (!((index >= 4 && gain < 1e-5) || explained > 0.999)) return false;
+      stoppedEarly = index < lambdas.length - 1;
+      return true;
+    };
+    this.solve(start, lambdas, tolerance, report);
+    this.guide = { lambdas: fits.map(({ lambda }) => lambda), points };
+    return { fits, nullDeviance, largestLambda: largest, stoppedEarly };
+  }
+
+  /** Singles along the path, and every few solved lambdas doubles for these; `report` returns true to stop. */
+  private solve(start: Point, lambdas: readonly number[], tolerance: number, report: (solved: Solved) => boolean): void {
+    const approach = this.approach(lambdas[0]);
+    const single = Math.max(SINGLE_TOLERANCE, Math.min(tolerance, PATH_TOLERANCE) / 2);
+    const targets: Target[] = [
+      ...approach.map((lambda) => ({ lambda, tolerance: Math.max(1e-2 * lambda, single) })),
+      ...lambdas.map((lambda) => ({ lambda, tolerance: single })),
+    ];
+    let batch: Solved[] = [];
+    let before = start;
+    solvePath(this.passes, start, targets, {
+      precision: 'single',
+      standardisation: this.full,
+      onSolved: (solved, place) => {
+        if (place < approach.length) return false;
+        batch.push(solved);
+        if (batch.length < BATCH && place < targets.length - 1) return false;
+        let stop = false;
+        const proofs = batch.map(({ lambda, point }) => ({ lambda, tolerance, from: point }));
+        const found = batch;
+        batch = [];
+        solvePath(this.passes, before, proofs, {
+          precision: 'double',
+          standardisation: this.full,
+          onSolved: (proved, k) => {
+            before = proved.point;
+            return (stop = report({ ...proved, passes: proved.passes + found[k].passes }));
+          },
+        });
+        return stop;
+      },
+    });
+  }
+
+  /** Lambdas on the way from the largest to a first one that lies far below. */
+  private approach(first: number): number[] {
+    const largest = this.largestLambda();
+    const lambdas: number[] = [];
+    const last = first > 0 ? first / APPROACH_RATIO : largest * 1e-3;
+    for (let lambda = largest * APPROACH_RATIO; lambda >= last && lambda > 0; lambda *= APPROACH_RATIO) lambdas.push(lambda);
+    return lambdas;
+  }
+
+  /** As `fitAt`, started from a fit if there is one. */
+  fitAt(lambda: number, options: FitOptions & { readonly start?: { intercept: number; coefficients: ArrayLike<number> } } = {}): Fit {
+    requireLambda(lambda);
+    const tolerance = options.tolerance ?? 1e-9;
+    let found: Solved | null = null;
+    if (options.start) {
+      const point = this.pointFrom(options.start);
+      solvePath(this.passes, point, [{ lambda, tolerance, from: point }], {
+        precision: 'double',
+        standardisation: this.full,
+        lanes: 1,
+        onSolved: (solved) => {
+          found = solved;
+          return true;
+        },
+      });
+    } else {
+      this.solve(this.begin(), [lambda], tolerance, (solved) => {
+        found = solved;
+        return true;
+      });
+    }
+    return this.fitOf(found as unknown as Solved);
+  }
+
+  private pointFrom(start: { intercept: number; coefficients: ArrayLike<number> }): Point {
+    const { full, layout } = this;
+    const point = pointOf(layout.columns.length);
+    point.intercept = start.intercept;
+    layout.columns.forEach(({ source }, j) => {
+      if (full.used[j] === 0) return;
+      point.t[j] = Math.min(full.upper[j], Math.max(full.lower[j], start.coefficients[source] * full.scale[j]));
+      point.intercept += (point.t[j] / full.scale[j]) * full.centre[j];
+    });
+    return point;
+  }
+
+  /** On the scale of x, in the problem's order. */
+  private unscaled(point: Point, s: Standardisation): { intercept: number; coefficients: Float64Array } {
+    const coefficients = new Float64Array(this.problem.columns.length);
+    let { intercept } = point;
+    this.layout.columns.forEach(({ source }, j) => {
+      if (point.t[j] === 0) return;
+      coefficients[source] = point.t[j] / s.scale[j];
+      intercept -= coefficients[source] * s.centre[j];
+    });
+    return { intercept, coefficients };
+  }
+
+  private fitOf(solved: Solved): Fit {
+    const { full } = this;
+    return {
+      lambda: solved.lambda,
+      ...this.unscaled(solved.point, full),
+      objective: solved.objective,
+      deviance: 2 * full.totalWeight * solved.point.loss,
+      optimalityResidual: solved.residual,
+      iterations: solved.passes,
+      status: solved.converged ? 'converged' : 'iteration-limit',
+    };
+  }
+
+  /** All rows' solutions at the lambdas, with gradients: those of the last path, or found in singles. */
+  private guideTo(lambdas: readonly number[]): readonly Point[] {
+    const known = this.guide;
+    if (known && lambdas.length <= known.lambdas.length && lambdas.every((lambda, k) => lambda === known.lambdas[k])) return known.points;
+    const points: Point[] = [];
+    const approach = this.approach(lambdas[0]);
+    const targets = [...approach, ...lambdas].map((lambda) => ({ lambda, tolerance: SINGLE_TOLERANCE }));
+    solvePath(this.passes, this.begin(), targets, {
+      precision: 'single',
+      standardisation: this.full,
+      onSolved: ({ point }, place) => {
+        if (place >= approach.length) points.push(point);
+        return false;
+      },
+    });
+    this.guide = { lambdas: [...lambdas], points };
+    return points;
+  }
+
+  /** Folds at exactly the given lambdas, several at once. */
+  crossValidate(lambdas: readonly number[], options: EngineFolds = {}): EngineCrossValidation {
+    const { layout, problem, full } = this;
+    const guide = this.guideTo(lambdas);
+    const size = layout.columns.length;
+    const deviances: Float64Array[] = [];
+    const failed: boolean[] = [];
+    let optimalityResidual = 0;
+    let finished = 0;
+    for (let first = 0; first < layout.folds; first += LANES_SINGLE) {
+      const followers = Array.from({ length: Math.min(LANES_SINGLE, layout.folds - first) }, (_, k): Follower => {
+        const fold = first + k;
+        const sums = weightSums(layout, (other) => other !== fold);
+        const own = options.valuesForFold?.(fold + 1) ?? null;
+        const standardisation = own
+          ? fromTables(problem, layout, sums, (source) => own[source])
+          : ownStandardisation(problem, layout, full, sums);
+        deviances[fold] = new Float64Array(lambdas.length);
+        return { point: pointOf(size), standardisation, leftOut: fold, heldOut: 0, place: 0, passes: 0, failed: false };
+      });
+      follow(this.passes, followers, {
+        guide,
+        full,
+        lambdas,
+        tolerance: Math.max(SINGLE_TOLERANCE, (options.tolerance ?? PATH_TOLERANCE) / 2),
+        counted: false,
+        onArrival: (lane, place, residual) => {
+          const fold = first + lane;
+          deviances[fold][place] = (2 * followers[lane].heldOut) / layout.foldWeights[fold];
+          optimalityResidual = Math.max(optimalityResidual, residual);
+          options.onFoldFit?.(fold + 1, place, {
+            ...this.unscaled(followers[lane].point, followers[lane].standardisation),
+            optimalityResidual: residual,
+          });
+          if (place === lambdas.length - 1) options.onFold?.(++finished, layout.folds);
+        },
+      });
+      followers.forEach((follower, k) => (failed[first + k] = follower.failed));
+    }
+    const folds = deviances.map((deviance, fold) =>
+      failed[fold] ? null : { fold: fold + 1, weight: layout.foldWeights[fold], deviance: Array.from(deviance) },
+    );
+    return { folds, optimalityResidual };
+  }
+
+  /** Residual of points on the scale of x in double precision: what a fit found otherwise is worth. */
+  residualOf(lambda: number, fit: { intercept: number; coefficients: ArrayLike<number> }, leftOutFold = 0): number {
+    const standardisation =
+      leftOutFold === 0 ? this.full : ownStandardisation(this.problem, this.layout, this.full, weightSums(this.layout, (f) => f !== leftOutFold - 1));
+    const lane: Lane = { point: this.pointFrom(fit), standardisation, leftOut: leftOutFold - 1, heldOut: 0 };
+    this.passes.run([lane], 'double');
+    return residualAt(lane.point, standardisation, lambda);
+  }
+}
+
+/** The folds' summary, as `crossValidate` gives it. @throws never; `null` while a fold is missing */
+export function summariseFolds(lambdas: readonly number[], result: EngineCrossValidation): CrossValidation | null {
+  const folds = result.folds.flatMap((fold) => (fold ? [fold] : []));
+  if (folds.length < result.folds.length) return null;
+  return { ...summarise(lambdas, folds), optimalityResidual: result.optimalityResidual, converged: true };
+}
+
+export type { Precision };

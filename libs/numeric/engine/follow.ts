@@ -1,0 +1,177 @@
+import { curvatureOf, sumOfGrams, type Curvature } from './curvature';
+import { copyPoint, pointOf, residualAt, slopeAlong, type Lane, type Point } from './lane';
+import { LaneModel } from './lane-model';
+import type { Passes } from './passes';
+import type { Standardisation } from './standardisation';
+
+/** Lanes that follow a path which all rows have been along already: folds and resamples. */
+export interface Follower extends Lane {
+  /** Place on the path. */
+  place: number;
+  /** Passes at this place, and in all. */
+  passes: number;
+  failed: boolean;
+}
+
+export interface FollowOptions {
+  /** All rows' solutions with their gradients, in the order of `lambdas`. */
+  readonly guide: readonly Point[];
+  readonly full: Standardisation;
+  readonly lambdas: readonly number[];
+  readonly tolerance: number;
+  /** Rows count as the passes' counts say. */
+  readonly counted: boolean;
+  /** A follower has arrived at a place; its point and held-out loss are those of the last pass. */
+  readonly onArrival: (lane: number, place: number, residual: number) => void;
+}
+
+/** Lambdas between two curvatures. */
+const REFRESH = 4;
+const MOST_PASSES = 40;
+const MOST_STALLED = 6;
+
+interface State {
+  readonly model: LaneModel;
+  /** Where the last step began, with its gradient. */
+  readonly before: Point;
+  /** The gradient that the model foretold for the end of the step, intercept first. */
+  readonly foretold: Float64Array;
+  /** What the model missed of the last step from place to place, beyond what it missed of the guide's. */
+  readonly missed: Float64Array;
+  curvature: Curvature | null;
+  /** The last step led from place to place. */
+  travelled: boolean;
+  residual: number;
+  stalled: number;
+}
+
+/**
+ * Takes followers along the guide's path. What the quadratic model misses of a step is known for the guide and all but the same for a follower, so its
+ * gradient is corrected by it beforehand; most steps then need the one pass that proves them.
+ */
+export function follow(passes: Passes, followers: Follower[], options: FollowOptions): void {
+  const { guide, full, lambdas, tolerance } = options;
+  const size = full.used.length;
+  const states = followers.map((): State => ({
+    model: new LaneModel(size),
+    before: pointOf(size),
+    foretold: new Float64Array(size + 1),
+    missed: new Float64Array(size + 1),
+    curvature: null,
+    travelled: false,
+    residual: Infinity,
+    stalled: 0,
+  }));
+  const goal = 0.02 * tolerance;
+  let grams: Float64Array[] = [];
+  let gramAt = -Infinity;
+  const wholeWeight = full.totalWeight;
+  const refresh = (point: Point, standardisation: Standardisation, place: number): void => {
+    grams = passes.gram(point, standardisation);
+    gramAt = place;
+    states.forEach((state) => (state.curvature = null));
+  };
+  const curvatureFor = (lane: number): Curvature => {
+    const { leftOut, standardisation } = followers[lane];
+    return (states[lane].curvature ??= curvatureOf(sumOfGrams(grams, leftOut), size, wholeWeight / standardisation.totalWeight));
+  };
+
+  followers.forEach((follower) => copyPoint(guide[0], follower.point));
+  while (true) {
+    const riding = followers.flatMap((follower, lane) => (follower.failed || follower.place >= lambdas.length ? [] : [lane]));
+    if (riding.length === 0) return;
+    passes.run(
+      options.counted ? followers : riding.map((lane) => followers[lane]),
+      'single',
+      options.counted,
+    );
+    let contraction = 0;
+    let worst = -1;
+    for (const lane of riding) {
+      const follower = followers[lane];
+      const state = states[lane];
+      follower.passes++;
+      const was = state.residual;
+      state.residual = residualAt(follower.point, follower.standardisation, lambdas[follower.place]);
+      if (!state.travelled && was < Infinity && state.residual > 0.5 * was && state.residual > tolerance) {
+        state.stalled++;
+        if (state.residual / was > contraction) {
+          contraction = state.residual / was;
+          worst = lane;
+        }
+      }
+      if (!Number.isFinite(state.residual) || follower.passes > MOST_PASSES || state.stalled > MOST_STALLED) follower.failed = true;
+    }
+    const median = riding.map((lane) => followers[lane].place).sort((a, b) => a - b)[riding.length >> 1];
+    if (contraction > 0.5) refresh(followers[worst].point, followers[worst].standardisation, median);
+    else if (median >= gramAt + REFRESH || grams.length === 0) refresh(guide[Math.min(median + (REFRESH >> 1), guide.length - 1)], full, median);
+    for (const lane of riding) {
+      if (followers[lane].failed) continue;
+      step(lane);
+    }
+  }
+
+  function step(lane: number): void {
+    const follower = followers[lane];
+    const state = states[lane];
+    const { point, standardisation: s } = follower;
+    const { before, missed, foretold, model } = state;
+    if (state.travelled) {
+      missed[0] = point.gradientOfIntercept - foretold[0] + missed[0];
+      for (let j = 0; j < size; j++) missed[j + 1] = point.gradient[j] - foretold[j + 1] + missed[j + 1];
+    }
+    if (state.residual <= tolerance) {
+      options.onArrival(lane, follower.place, state.residual);
+      follower.place++;
+      follower.passes = 0;
+      state.residual = Infinity;
+      state.stalled = 0;
+      if (follower.place >= lambdas.length) return;
+      copyPoint(point, before);
+      const shift = guideMiss(lane, follower.place);
+      for (let k = 0; k <= size; k++) shift[k] += missed[k];
+      const curvature = curvatureFor(lane);
+      model.solve(curvature, s, lambdas[follower.place], before, point, goal, shift);
+      foretell(curvature, before, point, shift, foretold);
+      state.travelled = true;
+      return;
+    }
+    const lambda = lambdas[follower.place];
+    if (!state.travelled && follower.passes > 1 && state.residual > 10 * tolerance) {
+      const slope = slopeAlong(point, before, point, s, lambda);
+      if (slope > 0.5 * Math.abs(slopeAlong(before, before, point, s, lambda))) {
+        point.intercept = (before.intercept + point.intercept) / 2;
+        for (let j = 0; j < size; j++) point.t[j] = (before.t[j] + point.t[j]) / 2;
+        return;
+      }
+    }
+    state.travelled = false;
+    copyPoint(point, before);
+    model.solve(curvatureFor(lane), s, lambda, before, point, goal);
+  }
+
+  /** What the lane's model misses of the guide's own step to a place, intercept first. */
+  function guideMiss(lane: number, place: number): Float64Array {
+    const from = guide[place - 1];
+    const to = guide[place];
+    const missed = new Float64Array(size + 1);
+    foretell(curvatureFor(lane), from, to, null, missed);
+    missed[0] = to.gradientOfIntercept - missed[0];
+    for (let j = 0; j < size; j++) missed[j + 1] = to.gradient[j] - missed[j + 1];
+    return missed;
+  }
+
+  function foretell(curvature: Curvature, from: Point, to: Point, shift: Float64Array | null, result: Float64Array): void {
+    const { gram } = curvature;
+    const width = size + 1;
+    result[0] = from.gradientOfIntercept;
+    result.set(from.gradient, 1);
+    if (shift) for (let k = 0; k < width; k++) result[k] += shift[k];
+    add(0, to.intercept - from.intercept);
+    for (let j = 0; j < size; j++) add(j + 1, to.t[j] - from.t[j]);
+    function add(row: number, step: number): void {
+      if (step === 0) return;
+      for (let k = 0; k < width; k++) result[k] += step * gram[row * width + k];
+    }
+  }
+}

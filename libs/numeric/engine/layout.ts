@@ -1,0 +1,390 @@
+import type { CodedProblem } from './coded-columns';
+import { writeConstants } from './kernels/constants';
+import { BLOCK, CONSTANTS_AT, WORDS } from './kernels/descriptor';
+import { type KernelKind, type Machine, makeMachine } from './kernels/kernels';
+import { packColumns, type Pack } from './packing';
+
+/** Most lanes of one pass. */
+export const LANES_SINGLE = 16;
+export const LANES_DOUBLE = 8;
+
+/** Rows of a chunk, the unit of work of a thread: few for few rows, so that two threads find work, and never so many that sums in singles get coarse. */
+const MOST_CHUNK_ROWS = 32768;
+const LEAST_CHUNK_ROWS = 2048;
+const CHUNKS_OF_FEW_ROWS = 8;
+
+/** Rows that the curvature is taken from: beyond, the sampling error of the matrix no longer costs passes. */
+const GRAM_ROWS = 49152;
+
+/** One internal column: coded ones in the order of the packs, then linear ones. */
+export interface InternalColumn {
+  /** Number in the problem. */
+  readonly source: number;
+  /** First bin among all bins, and number of bins; -1 and 0 for linear columns. */
+  readonly firstBin: number;
+  readonly bins: number;
+  /** Pack, or -1. */
+  readonly pack: number;
+}
+
+export interface Places {
+  readonly codes: number;
+  readonly signed32: number;
+  readonly signed64: number;
+  readonly offset32: number;
+  readonly offset64: number;
+  readonly linear32: number;
+  readonly linear64: number;
+  readonly packTable: number;
+  readonly columnTable: number;
+  readonly blockTable: number;
+  readonly chunkTable: number;
+  readonly tables: number;
+  readonly contributions: number;
+  readonly etaList: number;
+  readonly gradientList: number;
+  readonly intercepts: number;
+  readonly masks: number;
+  readonly lossVectors: number;
+  readonly slopes: number;
+  readonly results: number;
+  readonly counts: number;
+  readonly gramUnits: number;
+  readonly gramTables: number;
+  readonly gramValueTable: number;
+  readonly gramValues: number;
+  readonly gramList: number;
+  readonly gramResults: number;
+  readonly description32: number;
+  readonly description64: number;
+  readonly descriptionGram: number;
+  readonly control: number;
+  readonly scratch: number;
+  readonly scratchBytes: number;
+}
+
+/** Rows and columns as the kernels read them, in one memory. */
+export interface Layout {
+  readonly machine: Machine;
+  readonly rows: number;
+  /** Rows of the problem in the order of the layout, block by block: `slots[s]` is where the row at `order[s]` lies (block x 256 + place). */
+  readonly order: Uint32Array;
+  readonly slots: Uint32Array;
+  readonly columns: readonly InternalColumn[];
+  readonly coded: number;
+  readonly linear: number;
+  readonly packs: readonly Pack[];
+  readonly codesOfPacks: number;
+  readonly bins: number;
+  readonly folds: number;
+  readonly blocks: number;
+  readonly chunks: number;
+  readonly gramUnits: readonly { readonly fold: number; readonly share: number }[];
+  readonly gramSize: number;
+  readonly workers: number;
+  readonly at: Places;
+  /** Sums of weights by fold and bin. */
+  readonly binWeights: Float64Array;
+  readonly foldWeights: Float64Array;
+  /** Centre and scale of linear columns, whose values are stored centred and scaled. */
+  readonly linearCentre: Float64Array;
+  readonly linearScale: Float64Array;
+  /** Sums over rows by fold and linear column: w z, w z^2. */
+  readonly linearMoments: Float64Array;
+}
+
+export interface LayoutOptions {
+  /** Fold of each row from 0; absent = one fold. */
+  readonly folds?: ArrayLike<number>;
+  readonly kernels?: KernelKind;
+  /** Threads that may work on it, with the caller. */
+  readonly workers?: number;
+  /** Room for counts by row and lane: what resamples need. */
+  readonly counted?: boolean;
+}
+
+/** Below lie the constants of the kernels. */
+const FIRST_ADDRESS = 1024;
+
+/** Addresses one after the other, each on a boundary of 64 bytes. */
+class Addresses {
+  private next = FIRST_ADDRESS;
+  take(bytes: number): number {
+    const at = this.next;
+    this.next = (at + bytes + 63) & ~63;
+    return at;
+  }
+  get size(): number {
+    return this.next;
+  }
+}
+
+const PACKED_ABOVE_ROWS = 5000;
+
+/** Lays a problem out: rows with weight, sorted by fold, in blocks that lie in one fold. */
+export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layout {
+  const { columns, outcome, weights, offset } = problem;
+  const folds = options.folds;
+  let foldCount = 1;
+  for (let i = 0; folds && i < folds.length; i++) foldCount = Math.max(foldCount, folds[i] + 1);
+  const { order, perFold } = sorted(outcome.length, weights, folds, foldCount);
+  const rows = order.length;
+  const blocks: { rows: number; fold: number }[] = [];
+  perFold.forEach((count, fold) => {
+    const pieces = Math.ceil(count / BLOCK);
+    for (let k = 0; k < pieces; k++)
+      blocks.push({ rows: Math.floor(((k + 1) * count) / pieces) - Math.floor((k * count) / pieces), fold });
+  });
+  const slots = new Uint32Array(rows);
+  let row = 0;
+  blocks.forEach((block, b) => {
+    for (let i = 0; i < block.rows; i++) slots[row++] = b * BLOCK + i;
+  });
+
+  const codedPlaces = columns.flatMap((column, j) => (column.kind === 'coded' ? [j] : []));
+  const linearPlaces = columns.flatMap((column, j) => (column.kind === 'linear' ? [j] : []));
+  const packs = packColumns(
+    codedPlaces.map((j) => columns[j].values.length),
+    rows >= PACKED_ABOVE_ROWS ? 256 : 64,
+  );
+  const internal: InternalColumn[] = [];
+  let bins = 0;
+  packs.forEach((pack, p) => {
+    for (const member of pack.members) {
+      const source = codedPlaces[member];
+      internal.push({ source, firstBin: bins, bins: columns[source].values.length, pack: p });
+      bins += columns[source].values.length;
+    }
+  });
+  for (const source of linearPlaces) internal.push({ source, firstBin: -1, bins: 0, pack: -1 });
+  const linear = linearPlaces.length;
+  const codesOfPacks = packs.reduce((sum, { codes }) => sum + codes, 0);
+
+  const chunkRows = Math.min(MOST_CHUNK_ROWS, Math.max(LEAST_CHUNK_ROWS, Math.ceil(rows / CHUNKS_OF_FEW_ROWS)));
+  const chunkBlocks = Math.max(1, Math.floor(chunkRows / BLOCK));
+  const chunks = Math.ceil(blocks.length / chunkBlocks);
+  const units = gramUnitsOf(blocks, rows);
+  const gramSize = (internal.length + 1 + 3) & ~3;
+  const workers = options.workers ?? 1;
+
+  const addresses = new Addresses();
+  const stride = 64;
+  const padded = blocks.length * BLOCK;
+  const scratchBytes = (Math.max(BLOCK * stride + codesOfPacks * stride, BLOCK * 16 + gramSize * BLOCK * 4) + 127) & ~63;
+  const resultBytes = (bins + linear + 2) * 16 * 8;
+  const at: Places = {
+    control: addresses.take(64),
+    description32: addresses.take(WORDS * 4),
+    description64: addresses.take(WORDS * 4),
+    descriptionGram: addresses.take(WORDS * 4),
+    codes: addresses.take(padded * packs.length),
+    signed32: addresses.take(padded * 4),
+    signed64: addresses.take(padded * 8),
+    offset32: offset ? addresses.take(padded * 4) : 0,
+    offset64: offset ? addresses.take(padded * 8) : 0,
+    linear32: addresses.take(padded * linear * 4),
+    linear64: addresses.take(padded * linear * 8),
+    packTable: addresses.take(packs.length * 16),
+    columnTable: addresses.take(internal.length * 8 + packs.reduce((sum, { codes, members }) => sum + codes * members.length, 0)),
+    blockTable: addresses.take(blocks.length * 8),
+    chunkTable: addresses.take(chunks * 8),
+    tables: addresses.take(codesOfPacks * stride),
+    contributions: addresses.take(bins * 16 * 8),
+    etaList: addresses.take(packs.length * 4),
+    gradientList: addresses.take(packs.length * 4),
+    intercepts: addresses.take(stride),
+    masks: addresses.take(foldCount * stride),
+    lossVectors: addresses.take(foldCount * 4),
+    slopes: addresses.take(linear * stride),
+    results: addresses.take(chunks * resultBytes),
+    counts: options.counted ? addresses.take(padded * LANES_SINGLE) : 0,
+    gramUnits: addresses.take(units.length * 12),
+    gramTables: addresses.take(codesOfPacks * 16),
+    gramValueTable: addresses.take(internal.length * 4),
+    gramValues: addresses.take(internal.reduce((sum, { pack }) => sum + (pack < 0 ? 0 : packs[pack].codes), 0) * 4),
+    gramList: addresses.take(packs.length * 4),
+    gramResults: addresses.take(units.length * gramSize * gramSize * 8),
+    scratch: addresses.take(scratchBytes * workers),
+    scratchBytes,
+  };
+  const machine = makeMachine(addresses.size, options.kernels, workers > 1);
+  const { buffer } = machine;
+  writeConstants(buffer, CONSTANTS_AT);
+  const u8 = new Uint8Array(buffer);
+  const i32 = new Int32Array(buffer);
+  const f32 = new Float32Array(buffer);
+  const f64 = new Float64Array(buffer);
+
+  const foldWeights = new Float64Array(foldCount);
+  for (let s = 0; s < rows; s++) {
+    const i = order[s];
+    const w = weights ? weights[i] : 1;
+    const signed = outcome[i] === 1 ? -w : w;
+    f32[(at.signed32 >> 2) + slots[s]] = signed;
+    f64[(at.signed64 >> 3) + slots[s]] = signed;
+    if (offset) f32[(at.offset32 >> 2) + slots[s]] = f64[(at.offset64 >> 3) + slots[s]] = offset[i];
+    foldWeights[blocks[slots[s] >> 8].fold] += w;
+  }
+  blocks.forEach((block, b) => i32.set([block.rows, block.fold], (at.blockTable >> 2) + b * 2));
+  for (let c = 0; c < chunks; c++) {
+    const first = c * chunkBlocks;
+    i32.set([first, Math.min(chunkBlocks, blocks.length - first)], (at.chunkTable >> 2) + c * 2);
+  }
+  units.forEach((unit, u) => i32.set([unit.first, unit.blocks, unit.step], (at.gramUnits >> 2) + u * 3));
+
+  // Codes of packs, and where each code's bins are.
+  const binWeights = new Float64Array(foldCount * bins);
+  let column = 0;
+  let firstCode = 0;
+  let decode = at.columnTable + internal.length * 8;
+  packs.forEach((pack, p) => {
+    i32.set([firstCode, pack.codes, column, pack.members.length], (at.packTable >> 2) + p * 4);
+    const byCode = new Float64Array(foldCount * pack.codes);
+    const sources = pack.members.map((member) => {
+      const own = columns[codedPlaces[member]];
+      return own.kind === 'coded' ? own.codes : new Uint8Array(0);
+    });
+    for (let s = 0; s < rows; s++) {
+      const i = order[s];
+      let code = 0;
+      for (let k = 0; k < sources.length; k++) code += sources[k][i] * pack.strides[k];
+      const slot = slots[s];
+      u8[at.codes + (slot >> 8) * packs.length * BLOCK + p * BLOCK + (slot & 255)] = code;
+      byCode[blocks[slot >> 8].fold * pack.codes + code] += weights ? weights[i] : 1;
+    }
+    pack.members.forEach((_, k) => {
+      const { firstBin, bins: own } = internal[column + k];
+      i32.set([firstBin, decode], (at.columnTable >> 2) + (column + k) * 2);
+      for (let code = 0; code < pack.codes; code++) {
+        const bin = Math.floor(code / pack.strides[k]) % own;
+        u8[decode + code] = bin;
+        for (let fold = 0; fold < foldCount; fold++) binWeights[fold * bins + firstBin + bin] += byCode[fold * pack.codes + code];
+      }
+      decode += pack.codes;
+    });
+    column += pack.members.length;
+    firstCode += pack.codes;
+  });
+
+  const moments = layOutLinear(problem, { linearPlaces, order, slots, blocks, foldCount, f32, f64, at });
+  return {
+    machine,
+    rows,
+    order,
+    slots,
+    columns: internal,
+    coded: internal.length - linear,
+    linear,
+    packs,
+    codesOfPacks,
+    bins,
+    folds: foldCount,
+    blocks: blocks.length,
+    chunks,
+    gramUnits: units,
+    gramSize,
+    workers,
+    at,
+    binWeights,
+    foldWeights,
+    ...moments,
+  };
+}
+
+function sorted(
+  length: number,
+  weights: ArrayLike<number> | undefined,
+  folds: ArrayLike<number> | undefined,
+  foldCount: number,
+): { order: Uint32Array; perFold: number[] } {
+  const perFold = new Array<number>(foldCount).fill(0);
+  const takes = (i: number): boolean => !weights || weights[i] > 0;
+  for (let i = 0; i < length; i++) if (takes(i)) perFold[folds ? folds[i] : 0]++;
+  const next: number[] = [];
+  perFold.reduce((start, count, fold) => ((next[fold] = start), start + count), 0);
+  const order = new Uint32Array(perFold.reduce((sum, count) => sum + count, 0));
+  for (let i = 0; i < length; i++) if (takes(i)) order[next[folds ? folds[i] : 0]++] = i;
+  return { order, perFold };
+}
+
+/** One unit per fold, at least four in all so that threads share them; every step-th block where there are rows enough. */
+function gramUnitsOf(
+  blocks: readonly { rows: number; fold: number }[],
+  rows: number,
+): { fold: number; first: number; blocks: number; step: number; share: number }[] {
+  const step = Math.max(1, Math.floor(rows / GRAM_ROWS));
+  const units: { fold: number; first: number; blocks: number; step: number; share: number }[] = [];
+  const folds = (blocks.at(-1)?.fold ?? 0) + 1;
+  const pieces = Math.max(1, Math.ceil(4 / folds));
+  let start = 0;
+  for (let fold = 0; fold < folds; fold++) {
+    let end = start;
+    while (end < blocks.length && blocks[end].fold === fold) end++;
+    const all = end - start;
+    const taken = Math.ceil(all / step);
+    const sum = (first: number, count: number, by: number): number => {
+      let total = 0;
+      for (let k = 0; k < count; k++) total += blocks[first + k * by].rows;
+      return total;
+    };
+    const share = sum(start, all, 1) / Math.max(1, sum(start, taken, step));
+    for (let piece = 0; piece < pieces; piece++) {
+      const from = Math.floor((piece * taken) / pieces);
+      const to = Math.floor(((piece + 1) * taken) / pieces);
+      if (to > from) units.push({ fold, first: start + from * step, blocks: to - from, step, share });
+    }
+    start = end;
+  }
+  return units;
+}
+
+function layOutLinear(
+  problem: CodedProblem,
+  on: {
+    linearPlaces: readonly number[];
+    order: Uint32Array;
+    slots: Uint32Array;
+    blocks: readonly { fold: number }[];
+    foldCount: number;
+    f32: Float32Array;
+    f64: Float64Array;
+    at: Places;
+  },
+): { linearCentre: Float64Array; linearScale: Float64Array; linearMoments: Float64Array } {
+  const { linearPlaces, order, slots, blocks, foldCount, f32, f64, at } = on;
+  const { weights } = problem;
+  const count = linearPlaces.length;
+  const linearCentre = new Float64Array(count);
+  const linearScale = new Float64Array(count);
+  const linearMoments = new Float64Array(foldCount * count * 2);
+  linearPlaces.forEach((place, j) => {
+    const { values } = problem.columns[place];
+    let total = 0;
+    let mean = 0;
+    const first = values[order[0]];
+    for (const i of order) {
+      const w = weights ? weights[i] : 1;
+      total += w;
+      mean += w * (values[i] - first);
+    }
+    const centre = first + mean / total;
+    let variance = 0;
+    for (const i of order) variance += (weights ? weights[i] : 1) * (values[i] - centre) ** 2;
+    const scale = Math.sqrt(variance / total);
+    linearCentre[j] = centre;
+    linearScale[j] = scale;
+    for (let s = 0; s < order.length; s++) {
+      const i = order[s];
+      const slot = slots[s];
+      const z = scale > 0 ? (values[i] - centre) / scale : 0;
+      const to = (slot >> 8) * count * BLOCK + j * BLOCK + (slot & 255);
+      f32[(at.linear32 >> 2) + to] = z;
+      f64[(at.linear64 >> 3) + to] = z;
+      const { fold } = blocks[slot >> 8];
+      const w = weights ? weights[i] : 1;
+      linearMoments[(fold * count + j) * 2] += w * z;
+      linearMoments[(fold * count + j) * 2 + 1] += w * z * z;
+    }
+  });
+  return { linearCentre, linearScale, linearMoments };
+}

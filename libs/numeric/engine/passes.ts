@@ -1,0 +1,242 @@
+import * as word from './kernels/descriptor';
+import type { Lane } from './lane';
+import { LANES_DOUBLE, LANES_SINGLE, type Layout } from './layout';
+import type { Standardisation } from './standardisation';
+import { Alone, type Crew } from './crew';
+
+export type Precision = 'single' | 'double';
+
+/** Runs passes: from the points of lanes to their exact gradients. */
+export class Passes {
+  /** Passes made so far, and passes times lanes. */
+  count = 0;
+  private readonly i32: Int32Array;
+  private readonly f32: Float32Array;
+  private readonly f64: Float64Array;
+
+  constructor(
+    readonly layout: Layout,
+    private readonly crew: Crew = new Alone(),
+  ) {
+    const { buffer } = layout.machine;
+    this.i32 = new Int32Array(buffer);
+    this.f32 = new Float32Array(buffer);
+    this.f64 = new Float64Array(buffer);
+    crew.join(layout.machine, layout.at);
+    this.describe(layout.at.description32, 4);
+    this.describe(layout.at.description64, 8);
+    this.describe(layout.at.descriptionGram, 4);
+    const { i32 } = this;
+    const { at, packs } = layout;
+    const gram = at.descriptionGram >> 2;
+    i32[gram + word.VECTORS] = 1;
+    i32[gram + word.TABLES] = at.gramTables;
+    i32[gram + word.ETA_LIST] = at.gramList;
+    i32[gram + word.ETA_COUNT] = packs.length;
+    packs.forEach((_, p) => (i32[(at.gramList >> 2) + p] = p));
+  }
+
+  close(): void {
+    this.crew.leave();
+  }
+
+  private describe(description: number, bytes: number): void {
+    const { at, packs, bins, linear, columns, gramSize } = this.layout;
+    const at32 = bytes === 4;
+    const words: [number, number][] = [
+      [word.CODES, at.codes],
+      [word.PACKS, packs.length],
+      [word.PACK_TABLE, at.packTable],
+      [word.COLUMN_TABLE, at.columnTable],
+      [word.BLOCK_TABLE, at.blockTable],
+      [word.CHUNK_TABLE, at.chunkTable],
+      [word.TABLES, at.tables],
+      [word.CONTRIBUTIONS, at.contributions],
+      [word.ETA_LIST, at.etaList],
+      [word.GRADIENT_LIST, at.gradientList],
+      [word.SIGNED_WEIGHTS, at32 ? at.signed32 : at.signed64],
+      [word.OFFSETS, at32 ? at.offset32 : at.offset64],
+      [word.INTERCEPTS, at.intercepts],
+      [word.MASKS, at.masks],
+      [word.LOSS_VECTORS, at.lossVectors],
+      [word.LINEAR, linear],
+      [word.LINEAR_VALUES, at32 ? at.linear32 : at.linear64],
+      [word.LINEAR_SLOPES, at.slopes],
+      [word.RESULTS, at.results],
+      [word.BINS, bins],
+      [word.GRAM_UNITS, at.gramUnits],
+      [word.GRAM_SIZE, gramSize],
+      [word.GRAM_VALUES, at.gramValueTable],
+      [word.GRAM_RESULTS, at.gramResults],
+      [word.COLUMNS, columns.length],
+    ];
+    for (const [place, value] of words) this.i32[(description >> 2) + place] = value;
+  }
+
+  /** Counts of rows by lane for resamples: byte of slot and lane. */
+  get counts(): Uint8Array {
+    const { at, blocks } = this.layout;
+    return new Uint8Array(this.layout.machine.buffer, at.counts, blocks * word.BLOCK * LANES_SINGLE);
+  }
+
+  /**
+   * One pass: gradient (and in doubles the loss) of every lane at its point; in singles the loss over the fold that a lane leaves out.
+   * @param lanes at most 16 in singles, 8 in doubles
+   * @param counted rows count as often as `counts` says for the lane (singles); the counts' stride is the number of lanes rounded up to 4
+   */
+  run(lanes: readonly Lane[], precision: Precision, counted = false): void {
+    this.count++;
+    const { layout, i32, f64 } = this;
+    const { at, bins, columns, coded, linear, packs, folds } = layout;
+    const double = precision === 'double';
+    const perVector = double ? 2 : 4;
+    const vectors = Math.ceil(lanes.length / perVector);
+    const width = vectors * perVector;
+    const description = double ? at.description64 : at.description32;
+    const d = description >> 2;
+    i32[d + word.VECTORS] = vectors;
+    i32[d + word.COUNTS] = counted ? at.counts : 0;
+    i32[d + word.MODE] = 0;
+    i32[d + word.RESULT_BYTES] = (bins + linear + 2) * width * 8;
+
+    const f = double ? f64 : this.f32;
+    const shift = double ? 3 : 2;
+    f64.fill(0, at.contributions >> 3, (at.contributions >> 3) + bins * width);
+    f.fill(0, at.intercepts >> shift, (at.intercepts >> shift) + width);
+    f.fill(0, at.slopes >> shift, (at.slopes >> shift) + linear * width);
+    f.fill(0, at.masks >> shift, (at.masks >> shift) + folds * width);
+    i32.fill(-1, at.lossVectors >> 2, (at.lossVectors >> 2) + folds);
+    const active = new Uint8Array(packs.length);
+    lanes.forEach((lane, l) => {
+      const { point, standardisation, leftOut } = lane;
+      f[(at.intercepts >> shift) + l] = point.intercept;
+      for (let fold = 0; fold < folds; fold++) f[(at.masks >> shift) + fold * width + l] = fold === leftOut ? 0 : 1;
+      if (leftOut >= 0) i32[(at.lossVectors >> 2) + leftOut] = (l / perVector) | 0;
+      for (let j = 0; j < columns.length; j++) {
+        const t = point.t[j];
+        if (t === 0) continue;
+        const { firstBin, bins: own, pack } = columns[j];
+        if (firstBin < 0) f[(at.slopes >> shift) + (j - coded) * width + l] = t;
+        else {
+          active[pack] = 1;
+          const to = (at.contributions >> 3) + firstBin * width + l;
+          for (let b = 0; b < own; b++) f64[to + b * width] = t * standardisation.values[firstBin + b];
+        }
+      }
+    });
+    let used = 0;
+    for (let p = 0; p < packs.length; p++) if (active[p]) i32[(at.etaList >> 2) + used++] = p;
+    i32[d + word.ETA_COUNT] = used;
+    for (let p = 0; p < packs.length; p++) i32[(at.gradientList >> 2) + p] = p;
+    i32[d + word.GRADIENT_COUNT] = packs.length;
+    if (double) layout.machine.kernels.spread64(description);
+    else layout.machine.kernels.spread32(description);
+    this.crew.run(double ? 'pass64' : 'pass32', description, layout.chunks);
+    this.collect(lanes, width, double);
+  }
+
+  /** Sums chunks in their order and turns sums by bin into gradients. */
+  private collect(lanes: readonly Lane[], width: number, double: boolean): void {
+    const { layout, f64 } = this;
+    const { at, bins, columns, linear, chunks, coded } = layout;
+    const size = (bins + linear + 2) * width;
+    const first = at.results >> 3;
+    for (let c = 1; c < chunks; c++) {
+      const from = first + c * size;
+      for (let k = 0; k < size; k++) f64[first + k] += f64[from + k];
+    }
+    const linearSums = first + bins * width;
+    const sums = linearSums + linear * width;
+    const losses = sums + width;
+    lanes.forEach((lane, l) => {
+      const { point, standardisation } = lane;
+      const { values, totalWeight, used } = standardisation;
+      point.gradientOfIntercept = f64[sums + l] / totalWeight;
+      for (let j = 0; j < columns.length; j++) {
+        if (used[j] === 0) {
+          point.gradient[j] = 0;
+          continue;
+        }
+        const { firstBin, bins: own } = columns[j];
+        let sum = 0;
+        if (firstBin < 0) sum = f64[linearSums + (j - coded) * width + l];
+        else for (let b = firstBin; b < firstBin + own; b++) sum += values[b] * f64[first + b * width + l];
+        point.gradient[j] = sum / totalWeight;
+      }
+      point.loss = double ? f64[losses + l] / totalWeight : NaN;
+      if (!double && lane.leftOut >= 0) lane.heldOut = f64[losses + l];
+    });
+  }
+
+  /** Sums of weights by bin for lanes whose rows count as `counts` says: [bin x lanes], and the lanes' totals. */
+  weigh(lanes: number): { width: number; bins: Float64Array; linear: Float64Array } {
+    const { layout, i32, f64 } = this;
+    const { at, bins, linear, chunks, packs, folds } = layout;
+    const width = Math.ceil(lanes / 4) * 4;
+    const d = at.description32 >> 2;
+    i32[d + word.VECTORS] = width / 4;
+    i32[d + word.COUNTS] = at.counts;
+    i32[d + word.MODE] = 1;
+    i32[d + word.RESULT_BYTES] = (bins + linear + 2) * width * 8;
+    i32.fill(-1, at.lossVectors >> 2, (at.lossVectors >> 2) + folds);
+    for (let p = 0; p < packs.length; p++) i32[(at.gradientList >> 2) + p] = p;
+    i32[d + word.GRADIENT_COUNT] = packs.length;
+    this.crew.run('pass32', at.description32, chunks);
+    const size = (bins + linear + 2) * width;
+    const sums = new Float64Array(size);
+    for (let c = 0; c < chunks; c++) {
+      const from = (at.results >> 3) + c * size;
+      for (let k = 0; k < size; k++) sums[k] += f64[from + k];
+    }
+    return { width, bins: sums.subarray(0, bins * width), linear: sums.subarray(bins * width, (bins + linear) * width) };
+  }
+
+  /**
+   * Weighted Gram matrices of (1, columns) per fold at a point, of a sample of the rows scaled up, by total weight of all rows.
+   * @returns folds x (columns + 1)^2, symmetric
+   */
+  gram(point: { intercept: number; t: Float64Array }, standardisation: Standardisation): Float64Array[] {
+    const { layout, i32, f32, f64 } = this;
+    const { at, bins, columns, coded, linear, packs, folds, gramSize, gramUnits } = layout;
+    const d = at.descriptionGram >> 2;
+    i32[d + word.OFFSETS] = at.offset32;
+    f64.fill(0, at.contributions >> 3, (at.contributions >> 3) + bins * 4);
+    f32.fill(0, at.intercepts >> 2, (at.intercepts >> 2) + 4);
+    f32.fill(0, at.slopes >> 2, (at.slopes >> 2) + linear * 4);
+    f32[at.intercepts >> 2] = point.intercept;
+    let place = at.gramValues;
+    const u8 = new Uint8Array(layout.machine.buffer);
+    for (let j = 0; j < columns.length; j++) {
+      const { firstBin, bins: own, pack } = columns[j];
+      if (firstBin < 0) {
+        f32[(at.slopes >> 2) + (j - coded) * 4] = point.t[j];
+        continue;
+      }
+      for (let b = 0; b < own; b++)
+        f64[(at.contributions >> 3) + (firstBin + b) * 4] = point.t[j] * standardisation.values[firstBin + b];
+      i32[(at.gramValueTable >> 2) + j] = place;
+      const decode = i32[(at.columnTable >> 2) + j * 2 + 1];
+      for (let code = 0; code < packs[pack].codes; code++)
+        f32[(place >> 2) + code] = standardisation.values[firstBin + u8[decode + code]];
+      place += packs[pack].codes * 4;
+    }
+    layout.machine.kernels.spread32(at.descriptionGram);
+    this.crew.run('gram', at.descriptionGram, gramUnits.length);
+    const size = columns.length + 1;
+    const total = layout.foldWeights.reduce((sum, w) => sum + w, 0);
+    const grams = Array.from({ length: folds }, () => new Float64Array(size * size));
+    gramUnits.forEach(({ fold, share }, u) => {
+      const from = (at.gramResults >> 3) + u * gramSize * gramSize;
+      const to = grams[fold];
+      for (let a = 0; a < size; a++) {
+        for (let b = a; b < size; b++) {
+          to[a * size + b] += (f64[from + a * gramSize + b] * share) / total;
+          to[b * size + a] = to[a * size + b];
+        }
+      }
+    });
+    return grams;
+  }
+}
+
+export const lanesOf = (precision: Precision): number => (precision === 'double' ? LANES_DOUBLE : LANES_SINGLE);

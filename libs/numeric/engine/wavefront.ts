@@ -1,0 +1,185 @@
+import { curvatureOf, sumOfGrams, type Curvature } from './curvature';
+import { copyPoint, penaltyAt, pointOf, residualAt, slopeAlong, type Lane, type Point } from './lane';
+import { LaneModel } from './lane-model';
+import { lanesOf, type Passes, type Precision } from './passes';
+import type { Standardisation } from './standardisation';
+
+/** One place on a path, solved. */
+export interface Solved {
+  readonly lambda: number;
+  readonly point: Point;
+  readonly residual: number;
+  readonly objective: number;
+  /** Passes it took part in. */
+  readonly passes: number;
+  readonly converged: boolean;
+}
+
+export interface Target {
+  readonly lambda: number;
+  readonly tolerance: number;
+  /** A point to begin at, all but optimal; absent = from the model at the nearest evaluated point. */
+  readonly from?: Point;
+}
+
+interface Rider extends Lane {
+  readonly place: number;
+  readonly target: Target;
+  readonly model: LaneModel;
+  /** The point before the last step, with what was known there. */
+  readonly before: Point;
+  evaluated: boolean;
+  /** The last step was a model's step from the lane's own point. */
+  stepped: boolean;
+  passes: number;
+  residual: number;
+  stalled: number;
+}
+
+/** Lambdas between two curvatures. */
+const REFRESH = 4;
+const MOST_PASSES = 60;
+const MOST_STALLED = 8;
+
+export interface WavefrontOptions {
+  readonly precision: Precision;
+  /** Called in the order of the targets; returns true to stop there. */
+  readonly onSolved: (solved: Solved, place: number) => boolean;
+  /** Hold the penalised coordinates at 0. */
+  readonly standardisation: Standardisation;
+  readonly lanes?: number;
+}
+
+/**
+ * Solves a path as a wavefront: lanes hold successive lambdas, each pass gives all of them their exact gradients, and each goes on from whichever
+ * evaluated point violates its own optimality conditions least, its own or that of a lambda before it.
+ * @param start a point with its gradient, optimal for a lambda before the first
+ */
+export function solvePath(passes: Passes, start: Point, targets: readonly Target[], options: WavefrontOptions): void {
+  const { precision, standardisation: s } = options;
+  const size = s.used.length;
+  const width = options.lanes ?? Math.min(8, lanesOf(precision));
+  const models = Array.from({ length: width }, () => new LaneModel(size));
+  const solved: (Solved | undefined)[] = [];
+  let riders: Rider[] = [];
+  let next = 0;
+  let reported = 0;
+  let curvature: Curvature | null = null;
+  let curvatureAt = -Infinity;
+  let latest: Point = start;
+  const refresh = (point: Point, place: number): void => {
+    curvatureAt = place;
+    curvature = curvatureOf(sumOfGrams(passes.gram(point, s), -1), size);
+  };
+  /** The curvature near a place: taken anew only once the lanes have moved on, in the middle of those that have a point yet. */
+  const near = (place: number): Curvature => {
+    if (!curvature || place >= curvatureAt + REFRESH) {
+      const middle = riders.filter(({ evaluated }) => evaluated).at(Math.min(2, riders.length - 1));
+      refresh(middle?.point ?? latest, place);
+    }
+    return curvature as unknown as Curvature;
+  };
+
+  while (reported < targets.length) {
+    while (riders.length < width && next < targets.length) {
+      const target = targets[next];
+      const rider: Rider = {
+        place: next,
+        target,
+        point: pointOf(size),
+        before: pointOf(size),
+        standardisation: s,
+        leftOut: -1,
+        heldOut: 0,
+        model: models[next % width],
+        evaluated: false,
+        stepped: false,
+        passes: 0,
+        residual: Infinity,
+        stalled: 0,
+      };
+      if (target.from) copyPoint(target.from, rider.point);
+      else {
+        const from = riders.filter(({ evaluated }) => evaluated).at(-1)?.point ?? latest;
+        rider.model.solve(near(riders[0]?.place ?? next), s, target.lambda, from, rider.point, goalOf(target));
+      }
+      riders.push(rider);
+      next++;
+    }
+    passes.run(riders, precision);
+    const points: Point[] = [latest];
+    const kept: Rider[] = [];
+    let contraction = 0;
+    for (const rider of riders) {
+      const { target, point } = rider;
+      rider.passes++;
+      const was = rider.residual;
+      rider.residual = residualAt(point, s, target.lambda);
+      if (rider.stepped && rider.residual > 0.5 * was) {
+        rider.stalled++;
+        contraction = Math.max(contraction, rider.residual / was);
+      }
+      const finished = rider.residual <= target.tolerance;
+      const failed = !Number.isFinite(rider.residual) || rider.passes >= MOST_PASSES || rider.stalled >= MOST_STALLED;
+      if (finished || failed) {
+        solved[rider.place] = {
+          lambda: target.lambda,
+          point,
+          residual: rider.residual,
+          objective: point.loss + penaltyAt(point, s, target.lambda),
+          passes: rider.passes,
+          converged: finished,
+        };
+      } else kept.push(rider);
+      rider.evaluated = true;
+      points.push(point);
+    }
+    // Poor progress says that the curvature no longer serves; it is taken anew at the lane that is furthest behind.
+    if (contraction > 0.5 && kept.length > 0) refresh(kept[0].point, kept[0].place);
+    const bases = points.map((point) => {
+      const copy = pointOf(size);
+      copyPoint(point, copy);
+      return copy;
+    });
+    for (const rider of kept) {
+      advance(rider, riders.indexOf(rider), bases, s, near(kept[0].place));
+    }
+    const done = riders.filter((rider) => !kept.includes(rider)).at(-1);
+    if (done && (kept.length === 0 || done.place < kept[0].place)) latest = done.point;
+    else if (kept.length > 0) latest = solved[kept[0].place - 1]?.point ?? latest;
+    riders = kept;
+    for (let ready = solved[reported]; ready; ready = solved[reported]) {
+      if (options.onSolved(ready, reported++)) return;
+    }
+  }
+}
+
+const goalOf = (target: Target): number => Math.max(1e-13, 0.02 * target.tolerance);
+
+/** One step of a lane, from the base that suits it best. A step that overshot is halved. */
+function advance(rider: Rider, index: number, bases: readonly Point[], s: Standardisation, curvature: Curvature): void {
+  const { point, before, target } = rider;
+  const own = bases[index + 1];
+  if (rider.stepped) {
+    const slope = slopeAlong(own, before, own, s, target.lambda);
+    const was = slopeAlong(before, before, own, s, target.lambda);
+    if (slope > 0.5 * Math.abs(was) && rider.residual > 10 * target.tolerance) {
+      point.intercept = (before.intercept + own.intercept) / 2;
+      for (let j = 0; j < point.t.length; j++) point.t[j] = (before.t[j] + own.t[j]) / 2;
+      return;
+    }
+  }
+  let base = own;
+  let least = rider.residual;
+  for (let k = index; k >= Math.max(0, index - 2); k--) {
+    const violation = residualAt(bases[k], s, target.lambda);
+    if (violation < 0.7 * least) {
+      base = bases[k];
+      least = violation;
+    }
+  }
+  rider.stepped = base === own;
+  copyPoint(base, before);
+  if (!rider.stepped) rider.residual = Infinity;
+  rider.model.solve(curvature, s, target.lambda, base, point, goalOf(target));
+}
