@@ -18,7 +18,7 @@ import { solvePath, type Solved, type Target } from './wavefront';
 export const PATH_TOLERANCE = 1e-6;
 
 /** What singles are asked for: their rounding adds some 1e-7 to the residual. */
-const SINGLE_TOLERANCE = 5e-7;
+const SINGLE_TOLERANCE = 9e-7;
 
 /** Neighbouring lambdas on the way to a cold one. */
 const APPROACH_RATIO = 0.5;
@@ -184,7 +184,7 @@ export class Engine {
   /** Singles along the path, and every few solved lambdas doubles for these; `report` returns true to stop. */
   private solve(start: Point, lambdas: readonly number[], tolerance: number, report: (solved: Solved) => boolean): void {
     const approach = this.approach(lambdas[0]);
-    const single = Math.max(SINGLE_TOLERANCE, Math.min(tolerance, PATH_TOLERANCE) / 2);
+    const single = Math.max(SINGLE_TOLERANCE, Math.min(tolerance, PATH_TOLERANCE) * 0.9);
     const targets: Target[] = [
       ...approach.map((lambda) => ({ lambda, tolerance: Math.max(1e-2 * lambda, single) })),
       ...lambdas.map((lambda) => ({ lambda, tolerance: single })),
@@ -329,7 +329,7 @@ export class Engine {
         guide,
         full,
         lambdas,
-        tolerance: Math.max(SINGLE_TOLERANCE, (options.tolerance ?? PATH_TOLERANCE) / 2),
+        tolerance: Math.max(SINGLE_TOLERANCE, (options.tolerance ?? PATH_TOLERANCE) * 0.9),
         counted: false,
         onArrival: (lane, place, residual) => {
           const fold = first + lane;

@@ -38,7 +38,11 @@ interface State {
   readonly foretold: Float64Array;
   /** What the model missed of the last step from place to place, beyond what it missed of the guide's. */
   readonly missed: Float64Array;
+  /** How that changed from one step to the next. */
+  readonly trend: Float64Array;
+  steps: number;
   curvature: Curvature | null;
+  curvatureAt: number;
   /** The last step led from place to place. */
   travelled: boolean;
   residual: number;
@@ -57,7 +61,10 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
     before: pointOf(size),
     foretold: new Float64Array(size + 1),
     missed: new Float64Array(size + 1),
+    trend: new Float64Array(size + 1),
+    steps: 0,
     curvature: null,
+    curvatureAt: -Infinity,
     travelled: false,
     residual: Infinity,
     stalled: 0,
@@ -69,7 +76,12 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
   const refresh = (point: Point, standardisation: Standardisation, place: number): void => {
     grams = passes.gram(point, standardisation);
     gramAt = place;
-    states.forEach((state) => (state.curvature = null));
+    states.forEach((state, lane) => {
+      const own = followers[lane].place;
+      if (Math.abs(own - place) > Math.abs(own - state.curvatureAt)) return;
+      state.curvature = null;
+      state.curvatureAt = place;
+    });
   };
   const curvatureFor = (lane: number): Curvature => {
     const { leftOut, standardisation } = followers[lane];
@@ -104,7 +116,10 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
     }
     const median = riding.map((lane) => followers[lane].place).sort((a, b) => a - b)[riding.length >> 1];
     if (contraction > 0.5) refresh(followers[worst].point, followers[worst].standardisation, median);
-    else if (median >= gramAt + REFRESH || grams.length === 0) refresh(guide[Math.min(median + (REFRESH >> 1), guide.length - 1)], full, median);
+    else if (median >= gramAt + REFRESH / 2 || grams.length === 0) {
+      const middle = Math.min(Math.max(0, gramAt) + REFRESH, guide.length - 1);
+      refresh(guide[middle], full, middle);
+    }
     for (const lane of riding) {
       if (followers[lane].failed) continue;
       step(lane);
@@ -117,8 +132,14 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
     const { point, standardisation: s } = follower;
     const { before, missed, foretold, model } = state;
     if (state.travelled) {
-      missed[0] = point.gradientOfIntercept - foretold[0] + missed[0];
-      for (let j = 0; j < size; j++) missed[j + 1] = point.gradient[j] - foretold[j + 1] + missed[j + 1];
+      const { trend } = state;
+      for (let k = 0; k <= size; k++) {
+        const more = (k === 0 ? point.gradientOfIntercept : point.gradient[k - 1]) - foretold[k];
+        const now = missed[k] + trend[k] + more;
+        trend[k] = state.steps > 0 && state.residual < 3 * tolerance ? now - missed[k] : 0;
+        missed[k] = now;
+      }
+      state.steps++;
     }
     if (state.residual <= tolerance) {
       options.onArrival(lane, follower.place, state.residual);
@@ -129,7 +150,7 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
       if (follower.place >= lambdas.length) return;
       copyPoint(point, before);
       const shift = guideMiss(lane, follower.place);
-      for (let k = 0; k <= size; k++) shift[k] += missed[k];
+      for (let k = 0; k <= size; k++) shift[k] += missed[k] + state.trend[k];
       const curvature = curvatureFor(lane);
       model.solve(curvature, s, lambdas[follower.place], before, point, goal, shift);
       foretell(curvature, before, point, shift, foretold);

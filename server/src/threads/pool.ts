@@ -1,5 +1,5 @@
-import { existsSync } from 'node:fs';
 import { Worker } from 'node:worker_threads';
+import { besideThis } from './beside-this';
 import type { TaskMessage, TaskReply, ThrownError } from './task';
 
 /** An error that a task threw in its thread; `name` and `details` are those of the original. */
@@ -94,7 +94,7 @@ export class ThreadPool {
   }
 
   private start(): Thread {
-    const worker = new Worker(entry(), { resourceLimits: { maxOldGenerationSizeMb: this.memoryMb }, execArgv: [] });
+    const worker = new Worker(besideThis('entry'), { resourceLimits: { maxOldGenerationSizeMb: this.memoryMb }, execArgv: [] });
     const thread: Thread = { worker, current: null };
     this.threads.add(thread);
     worker.on('message', (reply: TaskReply) => this.hear(thread, reply));
@@ -142,14 +142,4 @@ export class ThreadPool {
       if (thread) void thread.worker.terminate();
     }, patience).unref();
   }
-}
-
-/** Where a thread starts: beside this file when run from source, under threads/ of the bundle otherwise. */
-function entry(): URL {
-  const candidates = import.meta.url.endsWith('.ts')
-    ? ['./entry.mjs']
-    : ['./entry.js', './threads/entry.js', '../threads/entry.js'];
-  const found = candidates.map((path) => new URL(path, import.meta.url)).find((url) => existsSync(url));
-  if (!found) throw new Error(`No thread entry beside ${import.meta.url}`);
-  return found;
 }

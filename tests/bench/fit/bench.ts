@@ -11,6 +11,7 @@ import { hasGlmnet, timeGlmnet, type GlmnetTimes } from './glmnet';
 import { timeOurs, type OurTimes } from './ours';
 import { benchSample } from './sample';
 import { Alone } from '@tallystone/numeric/engine/crew';
+import { crewFor, warmCrew } from '../../../server/src/threads/crew';
 
 const args = process.argv.slice(2);
 const option = (name: string): string | undefined => (args.includes(name) ? args[args.indexOf(name) + 1] : undefined);
@@ -18,6 +19,13 @@ const json = args.includes('--json');
 const alone = args.includes('--alone');
 const chosen = CASES.filter(({ name }) => (option('--case') ?? name) === name);
 if (chosen.length === 0) throw new Error(`There is no case ${option('--case')}; there are ${CASES.map(({ name }) => name).join(', ')}.`);
+const threads = Number(option('--threads') ?? 2);
+const crew = (cells: number) => (threads > 1 ? crewFor(cells) : new Alone());
+if (threads > 1) {
+  warmCrew();
+  // A warm thread, as in the product: what is started while a fit runs is not what is measured.
+  await new Promise((resolve) => setTimeout(resolve, 1500));
+}
 const withGlmnet = !alone && hasGlmnet();
 if (!withGlmnet && !alone) console.error('R with glmnet is not installed (Debian: r-base-core r-cran-glmnet); ours alone.');
 
@@ -29,7 +37,7 @@ for (const of of chosen) {
   const ours: OurTimes[] = [];
   const theirs: GlmnetTimes[] = [];
   for (let round = 0; round < of.rounds; round++) {
-    ours.push(timeOurs(of, sample, () => new Alone()));
+    ours.push(timeOurs(of, sample, () => crew(of.rows * of.columns)));
     if (withGlmnet) theirs.push(timeGlmnet(of, sample, of.extrapolateFrom ? 'path' : 'cv'));
   }
   const memory = peakMemoryMB();

@@ -2,14 +2,16 @@
  * The numbers that exp and log(1 + u) are made of, for singles and doubles. The kernels read them from memory, each as often as a vector is wide:
  * a constant in the code costs several instructions each time, one in memory costs a load.
  *
- * Arguments are reduced by multiples of ln 2 in two parts (W. J. Cody and W. Waite, Software Manual for the Elementary Functions, 1980). The
- * polynomials are the best ones in relative error for singles (3e-9, reweighted least squares) and interpolate at Chebyshev's nodes for doubles (2e-17).
+ * Arguments of doubles are reduced by multiples of ln 2 in two parts (W. J. Cody and W. Waite, Software Manual for the Elementary Functions, 1980), those
+ * of singles as powers of 2. The polynomials are the best ones in relative error for singles (9e-8, reweighted least squares) and interpolate at
+ * Chebyshev's nodes for doubles (2e-17).
  */
 export const CONSTANTS_SINGLE: readonly number[] = [
-  // 1/ln 2, the number that rounds what it is added to, ln 2 in two parts
-  1.44269504088896341, 12582912, 0.693359375, -2.1219444e-4,
-  // exp, from the sixth power down
-  0.001381454, 0.0083687451, 0.041668391, 0.1666652, 0.49999993, 1, 1,
+  // 1/ln 2, the number that rounds what it is added to; the powers of 2^f from the fifth down
+  1.44269504088896341, 12582912,
+  0.001326469985, 0.009671533908, 0.05550734001, 0.2402224176, 0.6931469774, 1,
+  // one
+  1,
   // log(1 + u) = 2 atanh(f / (2 + f)): sqrt 2 - 1, a half, then the powers of f / (2 + f), ln 2
   0.41421356, 0.5, 0.22222222, 0.28571429, 0.4, 0.66666667, 2, 0.69314718,
   // bounds of what exp is asked for, the floor of a row's curvature

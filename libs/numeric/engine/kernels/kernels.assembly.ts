@@ -28,16 +28,14 @@ import {
 
 // @ts-ignore: decorator
 @inline function exp32(x: v128): v128 {
-  const shifted = f32x4.add(f32x4.mul(x, single(0)), single(1));
-  const n = f32x4.sub(shifted, single(1));
-  let f = f32x4.sub(x, f32x4.mul(n, single(2)));
-  f = f32x4.sub(f, f32x4.mul(n, single(3)));
-  let p = step32(single(4), f, 5);
+  const power = f32x4.mul(x, single(0));
+  const shifted = f32x4.add(power, single(1));
+  const f = f32x4.sub(power, f32x4.sub(shifted, single(1)));
+  let p = step32(single(2), f, 3);
+  p = step32(p, f, 4);
+  p = step32(p, f, 5);
   p = step32(p, f, 6);
   p = step32(p, f, 7);
-  p = step32(p, f, 8);
-  p = step32(p, f, 9);
-  p = step32(p, f, 10);
   return i32x4.add(p, i32x4.shl(shifted, 23));
 }
 
@@ -45,22 +43,22 @@ import {
 // @ts-ignore: decorator
 @inline function margin32(eta: v128, signed: v128): v128 {
   const m = v128.xor(eta, v128.andnot(i32x4.splat(0x80000000), signed));
-  return f32x4.pmax(single(20), f32x4.pmin(single(19), m));
+  return f32x4.pmax(single(18), f32x4.pmin(single(17), m));
 }
 
 /** log(1 + e^-m), e = exp(m). */
 // @ts-ignore: decorator
 @inline function loss32(m: v128, e: v128): v128 {
-  const u = f32x4.pmin(f32x4.div(single(10), e), e);
-  const far = f32x4.gt(u, single(11));
-  const f = v128.bitselect(f32x4.mul(f32x4.sub(u, single(10)), single(12)), u, far);
-  const s = f32x4.div(f, f32x4.add(single(17), f));
+  const u = f32x4.pmin(f32x4.div(single(8), e), e);
+  const far = f32x4.gt(u, single(9));
+  const f = v128.bitselect(f32x4.mul(f32x4.sub(u, single(8)), single(10)), u, far);
+  const s = f32x4.div(f, f32x4.add(single(15), f));
   const z = f32x4.mul(s, s);
-  let p = step32(single(13), z, 14);
+  let p = step32(single(11), z, 12);
+  p = step32(p, z, 13);
+  p = step32(p, z, 14);
   p = step32(p, z, 15);
-  p = step32(p, z, 16);
-  p = step32(p, z, 17);
-  const log = f32x4.add(f32x4.mul(p, s), v128.and(far, single(18)));
+  const log = f32x4.add(f32x4.mul(p, s), v128.and(far, single(16)));
   return f32x4.add(log, f32x4.pmax(f32x4.splat(0), f32x4.neg(m)));
 }
 
@@ -184,7 +182,7 @@ import {
 
 // @ts-ignore: decorator
 @inline function residual32(eta: v128, signed: v128): v128 {
-  return f32x4.div(signed, f32x4.add(single(10), exp32(margin32(eta, signed))));
+  return f32x4.div(signed, f32x4.add(single(8), exp32(margin32(eta, signed))));
 }
 
 /** Writes residuals over eta; adds their sums to `sums` (doubles, one per lane). */
@@ -430,16 +428,17 @@ export function pass32(description: usize, chunk: i32, scratch: usize): void {
   else chunk32(4, description, chunk, scratch);
 }
 
-/** Fills TABLES from CONTRIBUTIONS: the partial linear predictor of a pack's code is the sum over its columns, taken in double precision. */
+/** Fills TABLES of the packs that take part from CONTRIBUTIONS: the partial linear predictor of a pack's code is the sum over its columns, taken in double precision. */
 export function spread32(description: usize): void {
   const vectors = <usize>word(description, VECTORS);
-  const packs = <usize>word(description, PACKS);
+  const list = <usize>word(description, ETA_LIST);
+  const count = <usize>word(description, ETA_COUNT);
   const packTable = <usize>word(description, PACK_TABLE);
   const columnTable = <usize>word(description, COLUMN_TABLE);
   const contributions = <usize>word(description, CONTRIBUTIONS);
-  let to = <usize>word(description, TABLES);
-  for (let p: usize = 0; p < packs; p++) {
-    const pack = packTable + (p << 4);
+  for (let k: usize = 0; k < count; k++) {
+    const pack = packTable + (<usize>load<i32>(list + (k << 2)) << 4);
+    let to = <usize>word(description, TABLES) + <usize>load<i32>(pack) * (vectors << 4);
     const codesOfPack = <usize>load<i32>(pack, 4);
     const firstColumn = <usize>load<i32>(pack, 8);
     const lastColumn = firstColumn + <usize>load<i32>(pack, 12);
@@ -716,13 +715,14 @@ export function pass64(description: usize, chunk: i32, scratch: usize): void {
 /** As `spread32`, in double precision. */
 export function spread64(description: usize): void {
   const vectors = <usize>word(description, VECTORS);
-  const packs = <usize>word(description, PACKS);
+  const list = <usize>word(description, ETA_LIST);
+  const count = <usize>word(description, ETA_COUNT);
   const packTable = <usize>word(description, PACK_TABLE);
   const columnTable = <usize>word(description, COLUMN_TABLE);
   const contributions = <usize>word(description, CONTRIBUTIONS);
-  let to = <usize>word(description, TABLES);
-  for (let p: usize = 0; p < packs; p++) {
-    const pack = packTable + (p << 4);
+  for (let k: usize = 0; k < count; k++) {
+    const pack = packTable + (<usize>load<i32>(list + (k << 2)) << 4);
+    let to = <usize>word(description, TABLES) + <usize>load<i32>(pack) * (vectors << 4);
     const codesOfPack = <usize>load<i32>(pack, 4);
     const firstColumn = <usize>load<i32>(pack, 8);
     const lastColumn = firstColumn + <usize>load<i32>(pack, 12);
@@ -785,8 +785,8 @@ export function gram(description: usize, unit: i32, scratch: usize): void {
         const w = v128.load32_splat(signed + (i << 2));
         const m = margin32(v128.load(eta + (i << 4)), w);
         const e = exp32(m);
-        const q = f32x4.div(single(10), f32x4.add(single(10), e));
-        const curvature = f32x4.pmax(f32x4.mul(f32x4.mul(e, q), q), single(21));
+        const q = f32x4.div(single(8), f32x4.add(single(8), e));
+        const curvature = f32x4.pmax(f32x4.mul(f32x4.mul(e, q), q), single(19));
         root = f32x4.extract_lane(f32x4.sqrt(f32x4.mul(f32x4.abs(w), curvature)), 0);
       }
       store<f32>(slices + (i << 2), root);

@@ -3,17 +3,17 @@ import { CONSTANTS_DOUBLE, CONSTANTS_SINGLE } from './constants';
 /** exp and log(1 + u) by basic operations alone, as the kernels take them: the same bits everywhere, which `Math.exp` does not promise. */
 const fround = Math.fround;
 const single = Float32Array.from(CONSTANTS_SINGLE);
-const [LOG2_E, SHIFT, LN2_HIGH, LN2_LOW] = single;
-const EXP_SINGLE = single.subarray(4, 11);
-const [FAR_SINGLE] = single.subarray(11);
-const LOG_SINGLE = single.subarray(13, 18);
-const LN2_SINGLE = single[18];
+const [LOG2_E, SHIFT] = single;
+const EXP_SINGLE = single.subarray(2, 8);
+const FAR_SINGLE = single[9];
+const LOG_SINGLE = single.subarray(11, 16);
+const LN2_SINGLE = single[16];
 
 /** e^x for singles from -80 to 80. */
 export function exp32(x: number): number {
-  const n = fround(fround(fround(x * LOG2_E) + SHIFT) - SHIFT);
-  let f = fround(x - fround(n * LN2_HIGH));
-  f = fround(f - fround(n * LN2_LOW));
+  const power = fround(x * LOG2_E);
+  const n = fround(fround(power + SHIFT) - SHIFT);
+  const f = fround(power - n);
   let p = EXP_SINGLE[0];
   for (let k = 1; k < EXP_SINGLE.length; k++) p = fround(fround(p * f) + EXP_SINGLE[k]);
   return p * 2 ** n;

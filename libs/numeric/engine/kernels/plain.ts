@@ -269,9 +269,9 @@ export function plainKernels(buffer: ArrayBufferLike): Kernels {
     const packTable = word(description, PACK_TABLE) >> 2;
     const columnTable = word(description, COLUMN_TABLE) >> 2;
     const contributions = word(description, CONTRIBUTIONS) >> 3;
-    let to = word(description, TABLES) >> (double ? 3 : 2);
-    for (let p = 0; p < word(description, PACKS); p++) {
-      const at = packTable + p * 4;
+    grouped(word(description, ETA_LIST), word(description, ETA_COUNT), 1, (pack) => {
+      const at = packTable + pack * 4;
+      let to = (word(description, TABLES) >> (double ? 3 : 2)) + i32[at] * lanes;
       for (let code = 0; code < i32[at + 1]; code++) {
         for (let l = 0; l < lanes; l++) {
           let sum = 0;
@@ -282,7 +282,7 @@ export function plainKernels(buffer: ArrayBufferLike): Kernels {
           f[to++] = sum;
         }
       }
-    }
+    });
   }
 
   function gram(description: number, unit: number, scratch: number): void {
