@@ -75,7 +75,7 @@ const PATIENCE_MS = 60_000;
  */
 export class Team implements Crew {
   private machine: Machine | null = null;
-  private words = new Int32Array(8);
+  private words: Int32Array = new Int32Array(8);
   private first = 0;
   private scratch = 0;
   private round = 0;

@@ -11,6 +11,7 @@ import type { KernelKind } from './kernels/kernels';
 import { copyPoint, pointOf, residualAt, type Lane, type Point } from './lane';
 import { layOut, LANES_SINGLE, type Layout } from './layout';
 import { Passes, type Precision } from './passes';
+import { drawStratified, strataOf } from '../resampling/bootstrap';
 import { fromTables, fullStandardisation, ownStandardisation, weightSums, type Standardisation } from './standardisation';
 import { solvePath, type Solved, type Target } from './wavefront';
 
@@ -305,6 +306,13 @@ export class Engine {
     return points;
   }
 
+  /** Takes fits of all rows that were found before as the guide of `crossValidate`. */
+  followFits(fits: readonly Fit[]): void {
+    const lanes = fits.map((fit): Lane => ({ point: this.pointFrom(fit), standardisation: this.full, leftOut: -1, heldOut: 0 }));
+    for (let first = 0; first < lanes.length; first += LANES_SINGLE) this.passes.run(lanes.slice(first, first + LANES_SINGLE), 'single');
+    this.guide = { lambdas: fits.map(({ lambda }) => lambda), points: lanes.map(({ point }) => point) };
+  }
+
   /** Folds at exactly the given lambdas, several at once. */
   crossValidate(lambdas: readonly number[], options: EngineFolds = {}): EngineCrossValidation {
     const { layout, problem, full } = this;
@@ -323,7 +331,7 @@ export class Engine {
           ? fromTables(problem, layout, sums, (source) => own[source])
           : ownStandardisation(problem, layout, full, sums);
         deviances[fold] = new Float64Array(lambdas.length);
-        return { point: pointOf(size), standardisation, leftOut: fold, heldOut: 0, place: 0, passes: 0, failed: false };
+        return { point: pointOf(size), standardisation, leftOut: fold, heldOut: 0, heldOutGradient: new Float64Array(size + 1), place: 0, passes: 0, failed: false };
       });
       follow(this.passes, followers, {
         guide,
@@ -331,9 +339,9 @@ export class Engine {
         lambdas,
         tolerance: Math.max(SINGLE_TOLERANCE, (options.tolerance ?? PATH_TOLERANCE) * 0.9),
         counted: false,
-        onArrival: (lane, place, residual) => {
+        onArrival: (lane, place, residual, heldOut) => {
           const fold = first + lane;
-          deviances[fold][place] = (2 * followers[lane].heldOut) / layout.foldWeights[fold];
+          deviances[fold][place] = 2 * heldOut;
           optimalityResidual = Math.max(optimalityResidual, residual);
           options.onFoldFit?.(fold + 1, place, {
             ...this.unscaled(followers[lane].point, followers[lane].standardisation),
@@ -348,6 +356,62 @@ export class Engine {
       failed[fold] ? null : { fold: fold + 1, weight: layout.foldWeights[fold], deviance: Array.from(deviance) },
     );
     return { folds, optimalityResidual };
+  }
+
+  /**
+   * Stratified bootstrap resamples, each followed along the lambdas with its own standardisation, several at once.
+   * @param onDraw resample and place with the fit there; `converged` is false where a resample was given up
+   */
+  resample(
+    lambdas: readonly number[],
+    options: { readonly seed: number; readonly first?: number; readonly count: number; readonly tolerance?: number },
+    onDraw: (draw: { resample: number; place: number; intercept: number; coefficients: Float64Array; converged: boolean }) => void,
+  ): void {
+    const { layout, problem, full, passes } = this;
+    const guide = this.guideTo(lambdas);
+    const size = layout.columns.length;
+    const first = options.first ?? 0;
+    const end = first + options.count;
+    const strata = strataOf(problem.outcome);
+    for (let from = first; from < end; from += LANES_SINGLE) {
+      const count = Math.min(LANES_SINGLE, end - from);
+      const width = Math.ceil(count / 4) * 4;
+      const { counts } = passes;
+      counts.fill(0);
+      const totals = new Float64Array(count);
+      const squares = new Float64Array(count * layout.linear);
+      for (let l = 0; l < count; l++) {
+        const drawn = drawStratified(strata, options.seed, from + l);
+        for (let s = 0; s < layout.rows; s++) {
+          const i = layout.order[s];
+          const times = drawn[i];
+          if (times > 255) throw new RangeError('A row is drawn more than 255 times.');
+          counts[layout.slots[s] * width + l] = times;
+          totals[l] += times * (problem.weights ? problem.weights[i] : 1);
+        }
+        for (let j = 0; j < layout.linear; j++) squares[l * layout.linear + j] = passes.linearSquares(j, l, width);
+      }
+      const weighed = passes.weigh(count);
+      const followers = Array.from({ length: count }, (_, l): Follower => {
+        const bins = Float64Array.from({ length: layout.bins }, (__, b) => weighed.bins[b * weighed.width + l]);
+        const linear = Float64Array.from({ length: layout.linear * 2 }, (__, k) =>
+          k % 2 === 0 ? weighed.linear[(k >> 1) * weighed.width + l] : squares[l * layout.linear + (k >> 1)],
+        );
+        const standardisation = ownStandardisation(problem, layout, full, { bins, linear, total: totals[l] });
+        return { point: pointOf(size), standardisation, leftOut: -1, heldOut: 0, place: 0, passes: 0, failed: false };
+      });
+      const report = (lane: number, place: number, converged: boolean): void =>
+        onDraw({ resample: from + lane, place, ...this.unscaled(followers[lane].point, followers[lane].standardisation), converged });
+      follow(passes, followers, {
+        guide,
+        full,
+        lambdas,
+        tolerance: Math.max(SINGLE_TOLERANCE, options.tolerance ?? PATH_TOLERANCE),
+        counted: true,
+        onArrival: (lane, place) => report(lane, place, true),
+      });
+      followers.forEach((follower, lane) => follower.failed && report(lane, follower.place, false));
+    }
   }
 
   /** Residual of points on the scale of x in double precision: what a fit found otherwise is worth. */

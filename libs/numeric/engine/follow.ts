@@ -21,8 +21,8 @@ export interface FollowOptions {
   readonly tolerance: number;
   /** Rows count as the passes' counts say. */
   readonly counted: boolean;
-  /** A follower has arrived at a place; its point and held-out loss are those of the last pass. */
-  readonly onArrival: (lane: number, place: number, residual: number) => void;
+  /** A follower has arrived at a place, with its point; `heldOut` is its mean loss over the fold that it leaves out. */
+  readonly onArrival: (lane: number, place: number, residual: number, heldOut: number) => void;
 }
 
 /** Lambdas between two curvatures. */
@@ -70,6 +70,7 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
     stalled: 0,
   }));
   const goal = 0.02 * tolerance;
+  const finish = pointOf(size);
   let grams: Float64Array[] = [];
   let gramAt = -Infinity;
   const wholeWeight = full.totalWeight;
@@ -142,7 +143,7 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
       state.steps++;
     }
     if (state.residual <= tolerance) {
-      options.onArrival(lane, follower.place, state.residual);
+      options.onArrival(lane, follower.place, state.residual, heldOutLoss(lane));
       follower.place++;
       follower.passes = 0;
       state.residual = Infinity;
@@ -169,6 +170,20 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
     state.travelled = false;
     copyPoint(point, before);
     model.solve(curvatureFor(lane), s, lambda, before, point, goal);
+  }
+
+  /**
+   * Mean loss over the fold left out at the optimum that the last pass is within the tolerance of. The penalised optimum is no optimum of that loss, so
+   * what is left of the way changes it in the first order: the exact gradient over the fold times the model's last step takes that away.
+   */
+  function heldOutLoss(lane: number): number {
+    const follower = followers[lane];
+    const { leftOut, point, heldOut, heldOutGradient, standardisation } = follower;
+    if (leftOut < 0 || !heldOutGradient) return NaN;
+    states[lane].model.solve(curvatureFor(lane), standardisation, lambdas[follower.place], point, finish, goal);
+    let change = heldOutGradient[0] * (finish.intercept - point.intercept);
+    for (let j = 0; j < size; j++) change += heldOutGradient[j + 1] * (finish.t[j] - point.t[j]);
+    return heldOut / passes.layout.foldWeights[leftOut] + change;
   }
 
   /** What the lane's model misses of the guide's own step to a place, intercept first. */

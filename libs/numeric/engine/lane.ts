@@ -32,15 +32,19 @@ export interface Lane {
   readonly leftOut: number;
   /** Sum of w loss over the fold that is left out, from the last pass. */
   heldOut: number;
+  /** Gradient of the mean loss over that fold, the intercept's part first, where it is wanted. */
+  readonly heldOutGradient?: Float64Array;
 }
 
-/** Largest violation of the optimality conditions at a point, as it is reported. */
+/** Largest violation of the optimality conditions at a point, as it is reported: for columns that are scaled and not centred. */
 export function residualAt(point: Point, s: Standardisation, lambda: number): number {
-  let largest = Math.abs(point.gradientOfIntercept);
+  const g0 = point.gradientOfIntercept;
+  let largest = Math.abs(g0);
   for (let j = 0; j < s.used.length; j++) {
     if (s.used[j] === 0) continue;
+    const gradient = point.gradient[j] + (s.centre[j] / s.scale[j]) * g0;
     const amount =
-      violation(point.t[j], point.gradient[j], lambda * s.absolute[j], lambda * s.square[j], s.lower[j], s.upper[j]) *
+      violation(point.t[j], gradient, lambda * s.absolute[j], lambda * s.square[j], s.lower[j], s.upper[j]) *
       s.reporting[j];
     if (!(amount <= largest)) largest = amount;
   }

@@ -44,7 +44,6 @@ export interface Places {
   readonly etaList: number;
   readonly gradientList: number;
   readonly intercepts: number;
-  readonly masks: number;
   readonly lossVectors: number;
   readonly slopes: number;
   readonly results: number;
@@ -79,6 +78,8 @@ export interface Layout {
   readonly folds: number;
   readonly blocks: number;
   readonly chunks: number;
+  /** A chunk lies in one fold. */
+  readonly chunksOfFold: readonly { readonly start: number; readonly end: number }[];
   readonly gramUnits: readonly { readonly fold: number; readonly share: number }[];
   readonly gramSize: number;
   readonly workers: number;
@@ -161,8 +162,7 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
   const codesOfPacks = packs.reduce((sum, { codes }) => sum + codes, 0);
 
   const chunkRows = Math.min(MOST_CHUNK_ROWS, Math.max(LEAST_CHUNK_ROWS, Math.ceil(rows / CHUNKS_OF_FEW_ROWS)));
-  const chunkBlocks = Math.max(1, Math.floor(chunkRows / BLOCK));
-  const chunks = Math.ceil(blocks.length / chunkBlocks);
+  const { chunks, chunksOfFold } = chunksOf(blocks, foldCount, Math.max(1, Math.floor(chunkRows / BLOCK)));
   const units = gramUnitsOf(blocks, rows);
   const gramSize = (internal.length + 1 + 3) & ~3;
   const workers = options.workers ?? 1;
@@ -187,16 +187,15 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
     packTable: addresses.take(packs.length * 16),
     columnTable: addresses.take(internal.length * 8 + packs.reduce((sum, { codes, members }) => sum + codes * members.length, 0)),
     blockTable: addresses.take(blocks.length * 8),
-    chunkTable: addresses.take(chunks * 8),
+    chunkTable: addresses.take(chunks.length * 8),
     tables: addresses.take(codesOfPacks * stride),
     contributions: addresses.take(bins * 16 * 8),
     etaList: addresses.take(packs.length * 4),
     gradientList: addresses.take(packs.length * 4),
     intercepts: addresses.take(stride),
-    masks: addresses.take(foldCount * stride),
     lossVectors: addresses.take(foldCount * 4),
     slopes: addresses.take(linear * stride),
-    results: addresses.take(chunks * resultBytes),
+    results: addresses.take(chunks.length * resultBytes),
     counts: options.counted ? addresses.take(padded * LANES_SINGLE) : 0,
     gramUnits: addresses.take(units.length * 12),
     gramTables: addresses.take(codesOfPacks * 16),
@@ -226,10 +225,7 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
     foldWeights[blocks[slots[s] >> 8].fold] += w;
   }
   blocks.forEach((block, b) => i32.set([block.rows, block.fold], (at.blockTable >> 2) + b * 2));
-  for (let c = 0; c < chunks; c++) {
-    const first = c * chunkBlocks;
-    i32.set([first, Math.min(chunkBlocks, blocks.length - first)], (at.chunkTable >> 2) + c * 2);
-  }
+  chunks.forEach((chunk, c) => i32.set([chunk.first, chunk.blocks], (at.chunkTable >> 2) + c * 2));
   units.forEach((unit, u) => i32.set([unit.first, unit.blocks, unit.step], (at.gramUnits >> 2) + u * 3));
 
   // Codes of packs, and where each code's bins are.
@@ -280,7 +276,8 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
     bins,
     folds: foldCount,
     blocks: blocks.length,
-    chunks,
+    chunks: chunks.length,
+    chunksOfFold,
     gramUnits: units,
     gramSize,
     workers,
@@ -305,6 +302,30 @@ function sorted(
   const order = new Uint32Array(perFold.reduce((sum, count) => sum + count, 0));
   for (let i = 0; i < length; i++) if (takes(i)) order[next[folds ? folds[i] : 0]++] = i;
   return { order, perFold };
+}
+
+/** Chunks of about equal size, each in one fold. */
+function chunksOf(
+  blocks: readonly { fold: number }[],
+  folds: number,
+  most: number,
+): { chunks: { first: number; blocks: number }[]; chunksOfFold: { start: number; end: number }[] } {
+  const chunks: { first: number; blocks: number }[] = [];
+  const chunksOfFold: { start: number; end: number }[] = [];
+  let first = 0;
+  for (let fold = 0; fold < folds; fold++) {
+    let end = first;
+    while (end < blocks.length && blocks[end].fold === fold) end++;
+    const start = chunks.length;
+    const pieces = Math.ceil((end - first) / most);
+    for (let k = 0; k < pieces; k++) {
+      const from = first + Math.floor((k * (end - first)) / pieces);
+      chunks.push({ first: from, blocks: first + Math.floor(((k + 1) * (end - first)) / pieces) - from });
+    }
+    chunksOfFold.push({ start, end: chunks.length });
+    first = end;
+  }
+  return { chunks, chunksOfFold };
 }
 
 /** One unit per fold, at least four in all so that threads share them; every step-th block where there are rows enough. */

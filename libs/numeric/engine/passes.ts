@@ -13,6 +13,10 @@ export class Passes {
   private readonly i32: Int32Array;
   private readonly f32: Float32Array;
   private readonly f64: Float64Array;
+  private readonly sums: Float64Array;
+  private readonly ownSums: Float64Array;
+  private readonly heldSums: Float64Array;
+  private readonly gradient: Float64Array;
 
   constructor(
     readonly layout: Layout,
@@ -22,6 +26,11 @@ export class Passes {
     this.i32 = new Int32Array(buffer);
     this.f32 = new Float32Array(buffer);
     this.f64 = new Float64Array(buffer);
+    const rows = layout.bins + layout.linear + 2;
+    this.sums = new Float64Array(rows * LANES_SINGLE);
+    this.ownSums = new Float64Array(rows);
+    this.heldSums = new Float64Array(rows);
+    this.gradient = new Float64Array(layout.columns.length + 1);
     crew.join(layout.machine, layout.at);
     this.describe(layout.at.description32, 4);
     this.describe(layout.at.description64, 8);
@@ -57,7 +66,6 @@ export class Passes {
       [word.SIGNED_WEIGHTS, at32 ? at.signed32 : at.signed64],
       [word.OFFSETS, at32 ? at.offset32 : at.offset64],
       [word.INTERCEPTS, at.intercepts],
-      [word.MASKS, at.masks],
       [word.LOSS_VECTORS, at.lossVectors],
       [word.LINEAR, linear],
       [word.LINEAR_VALUES, at32 ? at.linear32 : at.linear64],
@@ -104,13 +112,11 @@ export class Passes {
     f64.fill(0, at.contributions >> 3, (at.contributions >> 3) + bins * width);
     f.fill(0, at.intercepts >> shift, (at.intercepts >> shift) + width);
     f.fill(0, at.slopes >> shift, (at.slopes >> shift) + linear * width);
-    f.fill(0, at.masks >> shift, (at.masks >> shift) + folds * width);
     i32.fill(-1, at.lossVectors >> 2, (at.lossVectors >> 2) + folds);
     const active = new Uint8Array(packs.length);
     lanes.forEach((lane, l) => {
       const { point, standardisation, leftOut } = lane;
       f[(at.intercepts >> shift) + l] = point.intercept;
-      for (let fold = 0; fold < folds; fold++) f[(at.masks >> shift) + fold * width + l] = fold === leftOut ? 0 : 1;
       if (leftOut >= 0) i32[(at.lossVectors >> 2) + leftOut] = (l / perVector) | 0;
       for (let j = 0; j < columns.length; j++) {
         const t = point.t[j];
@@ -135,37 +141,68 @@ export class Passes {
     this.collect(lanes, width, double);
   }
 
-  /** Sums chunks in their order and turns sums by bin into gradients. */
+  /** Sums chunks in their order and turns sums by bin into gradients; the chunks of a lane's left-out fold are taken out of its sums again. */
   private collect(lanes: readonly Lane[], width: number, double: boolean): void {
     const { layout, f64 } = this;
-    const { at, bins, columns, linear, chunks, coded } = layout;
+    const { at, bins, linear, chunks } = layout;
     const size = (bins + linear + 2) * width;
     const first = at.results >> 3;
-    for (let c = 1; c < chunks; c++) {
+    const sums = this.sums.subarray(0, size);
+    sums.fill(0);
+    for (let c = 0; c < chunks; c++) {
       const from = first + c * size;
-      for (let k = 0; k < size; k++) f64[first + k] += f64[from + k];
+      for (let k = 0; k < size; k++) sums[k] += f64[from + k];
     }
-    const linearSums = first + bins * width;
-    const sums = linearSums + linear * width;
-    const losses = sums + width;
+    const own = this.ownSums;
+    const rows = bins + linear + 2;
     lanes.forEach((lane, l) => {
-      const { point, standardisation } = lane;
-      const { values, totalWeight, used } = standardisation;
-      point.gradientOfIntercept = f64[sums + l] / totalWeight;
-      for (let j = 0; j < columns.length; j++) {
-        if (used[j] === 0) {
-          point.gradient[j] = 0;
-          continue;
+      const { point, standardisation, leftOut } = lane;
+      for (let k = 0; k < rows; k++) own[k] = sums[k * width + l];
+      if (leftOut >= 0) {
+        const held = this.heldSums;
+        held.fill(0);
+        const { start, end } = layout.chunksOfFold[leftOut];
+        for (let c = start; c < end; c++) {
+          for (let k = 0; k < rows; k++) held[k] += f64[first + c * size + k * width + l];
         }
-        const { firstBin, bins: own } = columns[j];
-        let sum = 0;
-        if (firstBin < 0) sum = f64[linearSums + (j - coded) * width + l];
-        else for (let b = firstBin; b < firstBin + own; b++) sum += values[b] * f64[first + b * width + l];
-        point.gradient[j] = sum / totalWeight;
+        for (let k = 0; k < rows; k++) own[k] -= held[k];
+        lane.heldOut = held[rows - 1];
+        if (lane.heldOutGradient) this.gradientOf(held, standardisation, layout.foldWeights[leftOut], lane.heldOutGradient);
       }
-      point.loss = double ? f64[losses + l] / totalWeight : NaN;
-      if (!double && lane.leftOut >= 0) lane.heldOut = f64[losses + l];
+      this.gradientOf(own, standardisation, standardisation.totalWeight, this.gradient);
+      point.gradientOfIntercept = this.gradient[0];
+      for (let j = 0; j < point.gradient.length; j++) point.gradient[j] = this.gradient[j + 1];
+      point.loss = double ? own[rows - 1] / standardisation.totalWeight : NaN;
     });
+  }
+
+  /** From sums by bin to the gradient of the mean loss, the intercept's part first. */
+  private gradientOf(sums: Float64Array, s: Standardisation, weight: number, gradient: Float64Array): void {
+    const { bins, columns, linear, coded } = this.layout;
+    gradient[0] = sums[bins + linear] / weight;
+    for (let j = 0; j < columns.length; j++) {
+      const { firstBin, bins: own } = columns[j];
+      let sum = 0;
+      if (s.used[j] === 0) sum = 0;
+      else if (firstBin < 0) sum = sums[bins + j - coded];
+      else for (let b = firstBin; b < firstBin + own; b++) sum += s.values[b] * sums[b];
+      gradient[j + 1] = sum / weight;
+    }
+  }
+
+  /** Sum of w z^2 of a linear column over the rows as a lane counts them. */
+  linearSquares(column: number, lane: number, width: number): number {
+    const { at, blocks, linear } = this.layout;
+    const { counts } = this;
+    let sum = 0;
+    for (let block = 0; block < blocks; block++) {
+      const rows = this.i32[(at.blockTable >> 2) + block * 2];
+      const values = (at.linear64 >> 3) + (block * linear + column) * word.BLOCK;
+      const signed = (at.signed64 >> 3) + block * word.BLOCK;
+      for (let i = 0; i < rows; i++)
+        sum += Math.abs(this.f64[signed + i]) * counts[(block * word.BLOCK + i) * width + lane] * this.f64[values + i] ** 2;
+    }
+    return sum;
   }
 
   /** Sums of weights by bin for lanes whose rows count as `counts` says: [bin x lanes], and the lanes' totals. */

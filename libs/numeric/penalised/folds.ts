@@ -65,12 +65,7 @@ export function crossValidate(
   lambdas: readonly number[],
   options: CrossValidationOptions = {},
 ): CrossValidation {
-  requireProblem(problem);
-  requireSameLength('folds', folds.length, problem.outcome.length);
-  requireThat(lambdas.length > 0, 'lambdas', 'at least one lambda is needed.');
-  lambdas.forEach(requireLambda);
-  const count = folds.reduce((most, fold) => Math.max(most, fold), 0);
-  requireThat(count >= 2, 'folds', 'at least two folds are needed.');
+  const count = requireFolds(problem, folds, lambdas);
   let optimalityResidual = 0;
   const failures: FoldFailure[] = [];
   const results: FoldResult[] = [];
@@ -86,14 +81,28 @@ export function crossValidate(
   return failures.length > 0 ? { ...told, failures } : told;
 }
 
-function fitFold(
-  problem: FitProblem,
-  folds: Uint8Array,
-  fold: number,
-  lambdas: readonly number[],
-  options: CrossValidationOptions,
-  record: (fit: Fit, index: number) => void,
-): FoldResult {
+/** A fold's training rows, and the weights that its fit is made with. */
+export interface FoldTraining {
+  /** 1 = training. */
+  readonly training: Uint8Array;
+  readonly weights: Float64Array;
+  /** Weight of the rows held out. */
+  readonly heldOut: number;
+}
+
+/** Number of folds. @throws NumericError for arguments of a cross-validation that do not fit together */
+export function requireFolds(problem: FitProblem, folds: Uint8Array, lambdas: readonly number[]): number {
+  requireProblem(problem);
+  requireSameLength('folds', folds.length, problem.outcome.length);
+  requireThat(lambdas.length > 0, 'lambdas', 'at least one lambda is needed.');
+  lambdas.forEach(requireLambda);
+  const count = folds.reduce((most, fold) => Math.max(most, fold), 0);
+  requireThat(count >= 2, 'folds', 'at least two folds are needed.');
+  return count;
+}
+
+/** @throws NumericError for a fold without weight, or whose training rows have one class only (names the fold) */
+export function trainingOf(problem: FitProblem, folds: Uint8Array, fold: number): FoldTraining {
   const rows = folds.length;
   const training = new Uint8Array(rows);
   const weights = new Float64Array(rows);
@@ -115,6 +124,20 @@ function fitFold(
     if (!(error instanceof NumericError)) throw error;
     throw new NumericError(error.code, `Fold ${fold}: ${error.message}`, { ...error.where, fold });
   }
+  return { training, weights, heldOut };
+}
+
+/** One fold fitted on the others at every lambda; `record` sees each fit. */
+export function fitFold(
+  problem: FitProblem,
+  folds: Uint8Array,
+  fold: number,
+  lambdas: readonly number[],
+  options: CrossValidationOptions,
+  record: (fit: Fit, index: number) => void,
+): FoldResult {
+  const rows = folds.length;
+  const { training, weights, heldOut } = trainingOf(problem, folds, fold);
   const columns = options.columnsForFold?.(fold, training) ?? problem.columns;
   columns.forEach((column, j) => requireSameLength(`column ${j} of fold ${fold}`, column.length, rows));
   requireSameLength(`columns of fold ${fold}`, columns.length, problem.columns.length);

@@ -13,14 +13,24 @@ export function stratifiedBootstrap(outcome: Uint8Array, seed: number, b: number
   requireOutcome(outcome);
   requireThat(Number.isSafeInteger(seed) && seed >= 0, 'seed', 'a seed is a whole number of at least 0.');
   requireThat(Number.isInteger(b) && b >= 0, 'b', 'the number of a resample is a whole number of at least 0.');
-  const random = new Generator(seed, b);
-  const counts = new Uint16Array(outcome.length);
-  for (const stratum of [1, 0]) {
+  return drawStratified(strataOf(outcome), seed, b);
+}
+
+/** Rows of the goods, then of the bads: what every resample of a study draws from. */
+export function strataOf(outcome: Uint8Array): readonly Uint32Array[] {
+  return [1, 0].map((stratum) => {
     const rows = new Uint32Array(outcome.length);
     let size = 0;
     for (let i = 0; i < outcome.length; i++) if (outcome[i] === stratum) rows[size++] = i;
-    for (let draw = 0; draw < size; draw++) counts[rows[random.below(size)]]++;
-  }
+    return rows.subarray(0, size);
+  });
+}
+
+/** `stratifiedBootstrap` for strata that are known and arguments that were checked. */
+export function drawStratified(strata: readonly Uint32Array[], seed: number, b: number): Uint16Array {
+  const random = new Generator(seed, b);
+  const counts = new Uint16Array(strata.reduce((sum, rows) => sum + rows.length, 0));
+  for (const rows of strata) for (let draw = 0; draw < rows.length; draw++) counts[rows[random.below(rows.length)]]++;
   return counts;
 }
 

@@ -38,30 +38,28 @@ export const SIGNED_WEIGHTS = 13;
 export const OFFSETS = 14;
 /** Per lane. */
 export const INTERCEPTS = 15;
-/** Per fold and lane: 1 where the fold's rows count in the lane. */
-export const MASKS = 16;
 /** Per fold: the vector whose loss is summed, -1 = none. Double precision sums all. */
-export const LOSS_VECTORS = 17;
-export const LINEAR = 18;
+export const LOSS_VECTORS = 16;
+export const LINEAR = 17;
 /** [block][linear column][row of the block]. */
-export const LINEAR_VALUES = 19;
+export const LINEAR_VALUES = 18;
 /** [linear column][lane]. */
-export const LINEAR_SLOPES = 20;
+export const LINEAR_SLOPES = 19;
 /** Per chunk: sums of residuals by bin and lane, by linear column and lane, by lane; then sums of losses by lane. Doubles. */
-export const RESULTS = 21;
-export const RESULT_BYTES = 22;
-export const BINS = 23;
+export const RESULTS = 20;
+export const RESULT_BYTES = 21;
+export const BINS = 22;
 /** Per row and lane one byte, 0 = none: how often the row counts in the lane. */
-export const COUNTS = 24;
+export const COUNTS = 23;
 /** 0: residuals of the logistic loss; 1: weights themselves. */
-export const MODE = 25;
+export const MODE = 24;
 /** Per unit of a Gram matrix three words: first block, blocks, step from block to block. */
-export const GRAM_UNITS = 26;
+export const GRAM_UNITS = 25;
 /** Columns with the intercept, rounded up to a multiple of 4. */
-export const GRAM_SIZE = 27;
+export const GRAM_SIZE = 26;
 /** Per coded column the place of its values by code of its pack, singles. */
-export const GRAM_VALUES = 28;
+export const GRAM_VALUES = 27;
 /** [unit][GRAM_SIZE][GRAM_SIZE], doubles, above the diagonal. */
-export const GRAM_RESULTS = 29;
-export const COLUMNS = 30;
+export const GRAM_RESULTS = 28;
+export const COLUMNS = 29;
 export const WORDS = 32;

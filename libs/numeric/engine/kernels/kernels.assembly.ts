@@ -5,7 +5,7 @@
  */
 import {
   BINS, BLOCK, BLOCK_TABLE, CHUNK_TABLE, CODES, COLUMNS, COLUMN_TABLE, CONSTANTS_AT, CONTRIBUTIONS, COUNTS, ETA_COUNT, ETA_LIST, GRADIENT_COUNT, GRADIENT_LIST,
-  GRAM_RESULTS, GRAM_SIZE, GRAM_UNITS, GRAM_VALUES, INTERCEPTS, LINEAR, LINEAR_SLOPES, LINEAR_VALUES, LOSS_VECTORS, MASKS, MODE, OFFSETS, PACKS,
+  GRAM_RESULTS, GRAM_SIZE, GRAM_UNITS, GRAM_VALUES, INTERCEPTS, LINEAR, LINEAR_SLOPES, LINEAR_VALUES, LOSS_VECTORS, MODE, OFFSETS, PACKS,
   PACK_TABLE, RESULTS, RESULT_BYTES, SIGNED_WEIGHTS, SINGLES, TABLES, VECTORS,
 } from './descriptor';
 
@@ -187,12 +187,8 @@ import {
 
 /** Writes residuals over eta; adds their sums to `sums` (doubles, one per lane). */
 // @ts-ignore: decorator
-@inline function residuals32(V: i32, counted: bool, eta: usize, rows: usize, signed: usize, masks: usize, counts: usize, sums: usize): void {
+@inline function residuals32(V: i32, counted: bool, eta: usize, rows: usize, signed: usize, counts: usize, sums: usize): void {
   const stride: usize = V << 4;
-  const m0 = v128.load(masks);
-  const m1 = V > 1 ? v128.load(masks, 16) : m0;
-  const m2 = V > 2 ? v128.load(masks, 32) : m0;
-  const m3 = V > 3 ? v128.load(masks, 48) : m0;
   let g0 = f32x4.splat(0);
   let g1 = f32x4.splat(0);
   let g2 = f32x4.splat(0);
@@ -202,24 +198,24 @@ import {
     const w = v128.load32_splat(signed + (i << 2));
     const c = counts + i * (V << 2);
     let r = residual32(v128.load(at), w);
-    r = f32x4.mul(r, counted ? countsAt(c, 0) : m0);
+    if (counted) r = f32x4.mul(r, countsAt(c, 0));
     g0 = f32x4.add(g0, r);
     v128.store(at, r);
     if (V > 1) {
       r = residual32(v128.load(at, 16), w);
-      r = f32x4.mul(r, counted ? countsAt(c, 4) : m1);
+      if (counted) r = f32x4.mul(r, countsAt(c, 4));
       g1 = f32x4.add(g1, r);
       v128.store(at, r, 16);
     }
     if (V > 2) {
       r = residual32(v128.load(at, 32), w);
-      r = f32x4.mul(r, counted ? countsAt(c, 8) : m2);
+      if (counted) r = f32x4.mul(r, countsAt(c, 8));
       g2 = f32x4.add(g2, r);
       v128.store(at, r, 32);
     }
     if (V > 3) {
       r = residual32(v128.load(at, 48), w);
-      r = f32x4.mul(r, counted ? countsAt(c, 12) : m3);
+      if (counted) r = f32x4.mul(r, countsAt(c, 12));
       g3 = f32x4.add(g3, r);
       v128.store(at, r, 48);
     }
@@ -238,15 +234,14 @@ import {
   v128.store(at, f64x2.add(v128.load(at, 16), f64x2.promote_low_f32x4(upper(x))), 16);
 }
 
-/** Losses of one vector of lanes, before eta is overwritten, in those lanes where the rows are held out. */
-function losses32(stride: usize, eta: usize, rows: usize, signed: usize, masks: usize, sums: usize): void {
-  const outside = f32x4.sub(f32x4.splat(1), v128.load(masks));
+/** Losses of one vector of lanes, before eta is overwritten. */
+function losses32(stride: usize, eta: usize, rows: usize, signed: usize, sums: usize): void {
   let low = v128.load(sums);
   let high = v128.load(sums, 16);
   for (let i: usize = 0; i < rows; i++) {
     const w = v128.load32_splat(signed + (i << 2));
     const m = margin32(v128.load(eta + i * stride), w);
-    const l = f32x4.mul(f32x4.mul(f32x4.abs(w), loss32(m, exp32(m))), outside);
+    const l = f32x4.mul(f32x4.abs(w), loss32(m, exp32(m)));
     low = f64x2.add(low, f64x2.promote_low_f32x4(l));
     high = f64x2.add(high, f64x2.promote_low_f32x4(upper(l)));
   }
@@ -256,13 +251,13 @@ function losses32(stride: usize, eta: usize, rows: usize, signed: usize, masks: 
 
 /** Weights in place of residuals: what standardisation of a lane needs. */
 // @ts-ignore: decorator
-@inline function weights32(V: i32, counted: bool, eta: usize, rows: usize, signed: usize, masks: usize, counts: usize): void {
+@inline function weights32(V: i32, counted: bool, eta: usize, rows: usize, signed: usize, counts: usize): void {
   let at = eta;
   for (let i: usize = 0; i < rows; i++) {
     const w = f32x4.abs(v128.load32_splat(signed + (i << 2)));
     const c = counts + i * (V << 2);
     for (let v: usize = 0; v < <usize>V; v++) {
-      v128.store(at, f32x4.mul(w, counted ? countsAt(c, v << 2) : v128.load(masks + (v << 4))));
+      v128.store(at, counted ? f32x4.mul(w, countsAt(c, v << 2)) : w);
       at += 16;
     }
   }
@@ -371,16 +366,15 @@ function losses32(stride: usize, eta: usize, rows: usize, signed: usize, masks: 
     const rows = <usize>load<i32>(blockAt);
     const fold = <usize>load<i32>(blockAt, 4);
     const signed = <usize>word(description, SIGNED_WEIGHTS) + block * (BLOCK * 4);
-    const masks = <usize>word(description, MASKS) + fold * stride;
     const countsHere = counts + block * (BLOCK * (V << 2));
     if (mode == 0) {
       predict32(V, description, block, rows, eta);
       const vector = load<i32>(<usize>word(description, LOSS_VECTORS) + (fold << 2));
-      if (vector >= 0) losses32(stride, eta + (<usize>vector << 4), rows, signed, masks + (<usize>vector << 4), losses + (<usize>vector << 5));
-      if (counts) residuals32(V, true, eta, rows, signed, masks, countsHere, sums);
-      else residuals32(V, false, eta, rows, signed, masks, countsHere, sums);
-    } else if (counts) weights32(V, true, eta, rows, signed, masks, countsHere);
-    else weights32(V, false, eta, rows, signed, masks, countsHere);
+      if (vector >= 0) losses32(stride, eta + (<usize>vector << 4), rows, signed, losses + (<usize>vector << 5));
+      if (counts) residuals32(V, true, eta, rows, signed, countsHere, sums);
+      else residuals32(V, false, eta, rows, signed, countsHere, sums);
+    } else if (counts) weights32(V, true, eta, rows, signed, countsHere);
+    else weights32(V, false, eta, rows, signed, countsHere);
     const codes = <usize>word(description, CODES) + block * packs * BLOCK;
     let k: usize = 0;
     while (k < count) {
@@ -568,10 +562,9 @@ export function spread32(description: usize): void {
 
 /** Writes residuals over eta; adds residuals and losses to the doubles at `sums` and `losses`. */
 // @ts-ignore: decorator
-@inline function residuals64(V: i32, eta: usize, rows: usize, signed: usize, masks: usize, sums: usize, losses: usize): void {
+@inline function residuals64(V: i32, eta: usize, rows: usize, signed: usize, sums: usize, losses: usize): void {
   const stride: usize = V << 4;
   for (let v: usize = 0; v < <usize>V; v++) {
-    const mask = v128.load(masks + (v << 4));
     let g = f64x2.splat(0);
     let l = f64x2.splat(0);
     let at = eta + (v << 4);
@@ -583,10 +576,10 @@ export function spread32(description: usize): void {
       const inverse = f64x2.div(double(4), f64x2.add(double(4), u));
       const right = f64x2.ge(m, f64x2.splat(0));
       const wrong = v128.bitselect(f64x2.mul(u, inverse), inverse, right);
-      const r = f64x2.mul(f64x2.mul(w, wrong), mask);
+      const r = f64x2.mul(w, wrong);
       g = f64x2.add(g, r);
       const loss = f64x2.add(log64(u), v128.andnot(size, right));
-      l = f64x2.add(l, f64x2.mul(f64x2.mul(f64x2.abs(w), loss), mask));
+      l = f64x2.add(l, f64x2.mul(f64x2.abs(w), loss));
       v128.store(at, r);
       at += stride;
     }
@@ -621,9 +614,8 @@ export function spread32(description: usize): void {
   for (let block = first; block < end; block++) {
     const blockAt = <usize>word(description, BLOCK_TABLE) + (block << 3);
     const rows = <usize>load<i32>(blockAt);
-    const fold = <usize>load<i32>(blockAt, 4);
     predict64(V, description, block, rows, eta);
-    residuals64(V, eta, rows, <usize>word(description, SIGNED_WEIGHTS) + block * (BLOCK * 8), <usize>word(description, MASKS) + fold * stride, sums, losses);
+    residuals64(V, eta, rows, <usize>word(description, SIGNED_WEIGHTS) + block * (BLOCK * 8), sums, losses);
     const codes = <usize>word(description, CODES) + block * packs * BLOCK;
     let k: usize = 0;
     while (k < count) {

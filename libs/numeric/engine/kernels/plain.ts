@@ -21,7 +21,6 @@ import {
   LINEAR_SLOPES,
   LINEAR_VALUES,
   LOSS_VECTORS,
-  MASKS,
   MODE,
   OFFSETS,
   PACKS,
@@ -125,7 +124,7 @@ export function plainKernels(buffer: ArrayBufferLike): Kernels {
       const blockAt = (word(description, BLOCK_TABLE) >> 2) + block * 2;
       const rows = i32[blockAt];
       const fold = i32[blockAt + 1];
-      if (double) residuals64(description, lanes, block, rows, fold, eta, sums, losses);
+      if (double) residuals64(description, lanes, block, rows, eta, sums, losses);
       else residuals32(description, lanes, block, rows, fold, eta, sums, losses);
       const codes = word(description, CODES) + block * packs * BLOCK;
       grouped(list, count, 1, (pack) => {
@@ -172,9 +171,8 @@ export function plainKernels(buffer: ArrayBufferLike): Kernels {
     losses: number,
   ): void {
     const signed = (word(description, SIGNED_WEIGHTS) >> 2) + block * BLOCK;
-    const masks = (word(description, MASKS) >> 2) + fold * lanes;
     const counts = word(description, COUNTS);
-    const times = (i: number, l: number): number => (counts ? u8[counts + (block * BLOCK + i) * lanes + l] : f32[masks + l]);
+    const times = (i: number, l: number): number => (counts ? u8[counts + (block * BLOCK + i) * lanes + l] : 1);
     if (word(description, MODE) === 1) {
       for (let i = 0; i < rows; i++)
         for (let l = 0; l < lanes; l++) f32[eta + i * lanes + l] = Math.abs(f32[signed + i]) * times(i, l);
@@ -183,11 +181,10 @@ export function plainKernels(buffer: ArrayBufferLike): Kernels {
     predict32(description, lanes, block, rows, eta);
     const vector = i32[(word(description, LOSS_VECTORS) >> 2) + fold];
     for (let l = 4 * vector; vector >= 0 && l < 4 * vector + 4; l++) {
-      const outside = fround(1 - f32[masks + l]);
       for (let i = 0; i < rows; i++) {
         const w = f32[signed + i];
         const m = margin32(f32[eta + i * lanes + l], w);
-        f64[losses + l] += fround(fround(Math.abs(w) * loss32(m, exp32(m))) * outside);
+        f64[losses + l] += fround(Math.abs(w) * loss32(m, exp32(m)));
       }
     }
     for (let l = 0; l < lanes; l++) {
@@ -207,7 +204,6 @@ export function plainKernels(buffer: ArrayBufferLike): Kernels {
     lanes: number,
     block: number,
     rows: number,
-    fold: number,
     eta: number,
     sums: number,
     losses: number,
@@ -240,9 +236,7 @@ export function plainKernels(buffer: ArrayBufferLike): Kernels {
       }
     }
     const signed = (word(description, SIGNED_WEIGHTS) >> 3) + block * BLOCK;
-    const masks = (word(description, MASKS) >> 3) + fold * lanes;
     for (let l = 0; l < lanes; l++) {
-      const mask = f64[masks + l];
       let g = 0;
       let loss = 0;
       for (let i = 0; i < rows; i++) {
@@ -253,9 +247,9 @@ export function plainKernels(buffer: ArrayBufferLike): Kernels {
         const size = magnitude < 690 ? magnitude : 690;
         const u = exp64(-size);
         const inverse = 1 / (1 + u);
-        const r = w * (m >= 0 ? u * inverse : inverse) * mask;
+        const r = w * (m >= 0 ? u * inverse : inverse);
         g += r;
-        loss += Math.abs(w) * (log64(u) + (m >= 0 ? 0 : size)) * mask;
+        loss += Math.abs(w) * (log64(u) + (m >= 0 ? 0 : size));
         f64[at] = r;
       }
       f64[sums + l] += g;
