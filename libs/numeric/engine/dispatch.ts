@@ -1,4 +1,5 @@
 import { crossValidate, fitFold, requireFolds, summarise, trainingOf, type CrossValidation, type CrossValidationOptions } from '../penalised/folds';
+import { withDuplicatesHeld } from '../penalised/duplicates';
 import { fitAt, fitPath, type FitOptions } from '../penalised/path';
 import type { Fit, FitProblem, Grid, Path } from '../penalised/problem';
 import { requireLambda, requireProblem } from '../penalised/validation';
@@ -77,11 +78,12 @@ function using<Value>(engine: Engine, work: (engine: Engine) => Value): Value {
  * @example fastPath(problem, { count: 100, smallestRatio: 1e-4, earlyStop: true }, { tolerance: 1e-9 }).solver // 'engine'
  */
 export function fastPath(
-  problem: FitProblem,
+  stated: FitProblem,
   grid: Grid,
   options: FitOptions & EngineChoice & { readonly onFit?: (fit: Fit, index: number, count: number) => void } = {},
 ): Path & SolvedBy {
-  requireProblem(problem);
+  requireProblem(stated);
+  const problem = withDuplicatesHeld(stated);
   const tolerance = options.tolerance ?? 1e-9;
   const slow = (reason: string): Path & SolvedBy => ({ ...fitPath(problem, grid, options), ...oracle(reason) });
   const against =
@@ -98,9 +100,10 @@ export function fastPath(
 }
 
 /** As `fitAt`, by the engine where that is faster. */
-export function fastFit(problem: FitProblem, lambda: number, options: FitOptions & EngineChoice & { readonly start?: Fit } = {}): Fit & SolvedBy {
-  requireProblem(problem);
+export function fastFit(stated: FitProblem, lambda: number, options: FitOptions & EngineChoice & { readonly start?: Fit } = {}): Fit & SolvedBy {
+  requireProblem(stated);
   requireLambda(lambda);
+  const problem = withDuplicatesHeld(stated);
   const slow = (reason: string): Fit & SolvedBy => ({ ...fitAt(problem, lambda, options), ...oracle(reason) });
   const against =
     reasonAgainst(problem, options) ??
@@ -119,12 +122,13 @@ export function fastFit(problem: FitProblem, lambda: number, options: FitOptions
  * @param options.path fits of all rows at the lambdas, found before, spare finding them again
  */
 export function fastCrossValidation(
-  problem: FitProblem,
+  stated: FitProblem,
   folds: Uint8Array,
   lambdas: readonly number[],
   options: Omit<CrossValidationOptions, 'onFoldFit'> & EngineChoice & { readonly path?: readonly Fit[] } = {},
 ): CrossValidation & SolvedBy {
-  const count = requireFolds(problem, folds, lambdas);
+  const count = requireFolds(stated, folds, lambdas);
+  const problem = withDuplicatesHeld(stated);
   const slow = (reason: string): CrossValidation & SolvedBy => ({ ...crossValidate(problem, folds, lambdas, options), ...oracle(reason) });
   const tolerance = options.tolerance ?? SINGLES_REACH;
   const against =
@@ -162,9 +166,10 @@ export function fastCrossValidation(
 }
 
 /** As `resampleFits`, by the engine where that is faster. A resample that the engine gives up is fitted by the oracle. */
-export function fastResamples(problem: FitProblem, lambda: number, options: ResampleOptions & EngineChoice): { draws: Draw[] } & SolvedBy {
-  requireProblem(problem);
+export function fastResamples(stated: FitProblem, lambda: number, options: ResampleOptions & EngineChoice): { draws: Draw[] } & SolvedBy {
+  requireProblem(stated);
   requireLambda(lambda);
+  const problem = withDuplicatesHeld(stated);
   const slow = (reason: string): { draws: Draw[] } & SolvedBy => ({ draws: resampleFits(problem, lambda, options), ...oracle(reason) });
   const { seed, first = 0, count, tolerance = SINGLES_REACH } = options;
   requireThat(Number.isSafeInteger(seed) && seed >= 0, 'seed', 'a seed is a whole number of at least 0.');

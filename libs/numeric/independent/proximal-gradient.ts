@@ -48,6 +48,36 @@ function standardise(problem: FitProblem): Standardised {
   return { z, centre, scale, weight, total };
 }
 
+/**
+ * Columns held at 0 because an earlier one says the same and the penalty does not tell them apart: the first of them carries all. The rule is that of
+ * the first solver (docs/decisions, columns that say the same), found here in another way: standardised values that agree on every row.
+ */
+function heldColumns({ z, scale, weight }: Standardised, { penalty }: FitProblem): boolean[] {
+  const multiplier = (j: number): number => penalty.multipliers?.[j] ?? 1;
+  const limit = (limits: Float64Array | undefined, j: number, none: number): number => limits?.[j] ?? none;
+  const held = z.map(() => false);
+  const agree = (j: number, k: number): boolean => {
+    const sign = Math.sign(z[j][differing(z[j])] * z[k][differing(z[j])]);
+    if (!z[j].every((value, i) => !(weight[i] > 0) || Math.abs(z[k][i] - sign * value) <= 1e-11)) return false;
+    if (!penalty.standardize && Math.abs(scale[j] - scale[k]) > 1e-11 * scale[j]) return false;
+    const [low, high] = [limit(penalty.lower, j, -Infinity), limit(penalty.upper, j, Infinity)];
+    const mirrored =
+      sign > 0
+        ? [limit(penalty.lower, k, -Infinity), limit(penalty.upper, k, Infinity)]
+        : [-limit(penalty.upper, k, Infinity), -limit(penalty.lower, k, -Infinity)];
+    const simple = (value: number): boolean => value === 0 || Math.abs(value) === Infinity;
+    return simple(low) && simple(high) && low === mirrored[0] && high === mirrored[1];
+  };
+  for (let k = 1; k < z.length; k++) {
+    if (scale[k] === 0 || !(penalty.mixing === 1 || multiplier(k) === 0)) continue;
+    for (let j = 0; j < k && !held[k]; j++) held[k] = scale[j] > 0 && !held[j] && multiplier(j) === multiplier(k) && agree(j, k);
+  }
+  return held;
+}
+
+/** A row where a standardised column is far from its mean. */
+const differing = (values: Float64Array): number => values.findIndex((value) => Math.abs(value) > 0.5);
+
 /** Largest eigenvalue of the weighted Gram matrix of (1, z) by power iteration; a quarter of it bounds the curvature of the logistic loss. */
 function largestEigenvalue({ z, weight }: Standardised): number {
   const rows = weight.length;
@@ -79,12 +109,14 @@ class SecondMethod {
   private readonly ridge: Float64Array;
   private readonly unit: Float64Array;
   private readonly eta: Float64Array;
+  private readonly held: boolean[];
 
   constructor(
     private readonly problem: FitProblem,
     private readonly lambda: number,
   ) {
     this.standardised = standardise(problem);
+    this.held = heldColumns(this.standardised, problem);
     const { mixing, standardize, multipliers } = problem.penalty;
     const { scale } = this.standardised;
     this.unit = scale.map((s) => (standardize ? 1 : s));
@@ -131,7 +163,7 @@ class SecondMethod {
     const shrunk = (Math.sign(value) * Math.max(0, Math.abs(value) - step * this.lasso[j])) / (1 + step * this.ridge[j]);
     const low = (this.problem.penalty.lower?.[j] ?? -Infinity) * scale[j];
     const high = (this.problem.penalty.upper?.[j] ?? Infinity) * scale[j];
-    if (scale[j] === 0) return 0;
+    if (scale[j] === 0 || this.held[j]) return 0;
     return shrunk < low ? low : shrunk > high ? high : shrunk;
   }
 
@@ -140,7 +172,7 @@ class SecondMethod {
     const { scale, centre } = this.standardised;
     let largest = Math.abs(gradient[0]);
     for (let j = 0; j < scale.length; j++) {
-      if (scale[j] === 0) continue;
+      if (scale[j] === 0 || this.held[j]) continue;
       const t = point[j + 1];
       // The definition is for uncentred columns; the centred gradient differs by the intercept's.
       const pull = t === 0 ? 0 : this.ridge[j] * t;

@@ -1,5 +1,6 @@
 import { requireSameLength, requireThat } from '../checks';
 import { NumericError } from '../errors';
+import { withDuplicatesHeld } from './duplicates';
 import { rowLoss } from './loss';
 import { approach, startAtLargest } from './path';
 import type { Fit, FitProblem, FitStatus } from './problem';
@@ -66,11 +67,13 @@ export function crossValidate(
   options: CrossValidationOptions = {},
 ): CrossValidation {
   const count = requireFolds(problem, folds, lambdas);
+  // What a fold holds is what all rows hold: the folds then speak of the fit that is reported.
+  const held = withDuplicatesHeld(problem);
   let optimalityResidual = 0;
   const failures: FoldFailure[] = [];
   const results: FoldResult[] = [];
   for (let fold = 1; fold <= count; fold++) {
-    const result = fitFold(problem, folds, fold, lambdas, options, (fit, index) => {
+    const result = fitFold(held, folds, fold, lambdas, options, (fit, index) => {
       optimalityResidual = Math.max(optimalityResidual, fit.optimalityResidual);
       if (fit.status !== 'converged') failures.push({ fold, index, status: fit.status });
     });

@@ -1,4 +1,5 @@
 import { requireThat } from '../checks';
+import { withDuplicatesHeld } from './duplicates';
 import { rowLoss, probabilityOfGood } from './loss';
 import type { Fit, FitProblem, Grid, Path } from './problem';
 import { Solver } from './solver';
@@ -74,6 +75,11 @@ function interceptWith(offset: Float64Array, outcome: Uint8Array, weights: Float
   return intercept;
 }
 
+function solverOf(problem: FitProblem): Solver {
+  const { penalty } = withDuplicatesHeld(problem);
+  return new Solver(problem, penalty, problem.weights);
+}
+
 /** Fits intercept and unpenalised columns and returns the largest lambda; the solver is left at that fit. */
 export function startAtLargest(solver: Solver): number {
   solver.solve(0, { tolerance: 1e-13, mostIterations: 60, unpenalisedOnly: true });
@@ -115,7 +121,7 @@ export function fitPath(
   options: FitOptions & { readonly onFit?: (fit: Fit, index: number, count: number) => void } = {},
 ): Path {
   requireProblem(problem);
-  const solver = new Solver(problem, problem.penalty, problem.weights);
+  const solver = solverOf(problem);
   const largest = startAtLargest(solver);
   const automatic = !('lambdas' in grid);
   const lambdas = automatic ? automaticGrid(largest, grid.count, grid.smallestRatio) : Array.from(grid.lambdas);
@@ -158,7 +164,7 @@ export function automaticGrid(largest: number, count: number, smallestRatio: num
 export function fitAt(problem: FitProblem, lambda: number, options: FitOptions & { readonly start?: Fit } = {}): Fit {
   requireProblem(problem);
   requireLambda(lambda);
-  const solver = new Solver(problem, problem.penalty, problem.weights);
+  const solver = solverOf(problem);
   if (options.start) solver.startFrom(options.start.intercept, options.start.coefficients);
   else approach(solver, startAtLargest(solver), lambda, options);
   return solver.solve(lambda, { ...options, tolerance: options.tolerance ?? FIT_TOLERANCE });

@@ -1,6 +1,7 @@
 import { requireThat } from '../checks';
 import { NumericError } from '../errors';
 import { quantilesType7 } from '../metrics/ordering';
+import { withDuplicatesHeld } from '../penalised/duplicates';
 import { approach, startAtLargest } from '../penalised/path';
 import type { Fit, FitProblem } from '../penalised/problem';
 import { Solver } from '../penalised/solver';
@@ -42,7 +43,8 @@ export function resampleFits(problem: FitProblem, lambda: number, options: Resam
     'the number of resamples is a whole number of at least 1.',
   );
   const tolerance = options.tolerance ?? 1e-6;
-  const solver = new Solver(problem, problem.penalty, problem.weights);
+  const { penalty } = withDuplicatesHeld(problem);
+  const solver = new Solver(problem, penalty, problem.weights);
   if (options.start) solver.startFrom(options.start.intercept, options.start.coefficients);
   else approach(solver, startAtLargest(solver), lambda);
   const centre = solver.solve(lambda, { tolerance });
