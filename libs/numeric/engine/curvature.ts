@@ -1,3 +1,15 @@
+import type { Passes } from './passes';
+import type { Standardisation } from './standardisation';
+
+interface PointLike {
+  readonly intercept: number;
+  readonly t: Float64Array;
+}
+
+/** Places that one large sample serves on either side, and places that are kept behind. */
+const ANCHORED = 8;
+const KEPT = 12;
+
 /** The curvature of a lane's quadratic model: a weighted Gram matrix with the intercept eliminated. */
 export interface Curvature {
   /** Number of columns. */
@@ -25,6 +37,49 @@ export function curvatureOf(gram: Float64Array, size: number, factor = 1): Curva
     hessian[a * size + a] *= 1 + FAINT;
   }
   return { size, gram: scaled, hessian };
+}
+
+/**
+ * Curvatures along a path: taken from the large sample now and then, and from there on changed by the difference of two small samples.
+ */
+export class CurvaturesAlong {
+  private anchor: { place: number; large: Float64Array[]; small: Float64Array[] } | null = null;
+  private readonly kept = new Map<number, Float64Array[]>();
+
+  /** @param pointAt where the curvature of a place is taken */
+  constructor(
+    private readonly passes: Passes,
+    private readonly standardisation: Standardisation,
+    private readonly pointAt: (place: number) => PointLike,
+  ) {}
+
+  /** Gram matrices by fold at a place. */
+  gramsAt(place: number): Float64Array[] {
+    const known = this.kept.get(place);
+    if (known) return known;
+    const { passes, standardisation, pointAt } = this;
+    const { large, small } = passes.layout.gramUnits;
+    let grams: Float64Array[];
+    if (large.units === small.units) grams = passes.gram(pointAt(place), standardisation);
+    else {
+      if (!this.anchor || Math.abs(place - this.anchor.place) > ANCHORED) {
+        const point = pointAt(place + ANCHORED);
+        this.anchor = {
+          place: place + ANCHORED,
+          large: passes.gram(point, standardisation, 'large'),
+          small: passes.gram(point, standardisation, 'small'),
+        };
+      }
+      const { anchor } = this;
+      grams = passes.gram(pointAt(place), standardisation, 'small');
+      grams.forEach((gram, fold) => {
+        for (let k = 0; k < gram.length; k++) gram[k] += anchor.large[fold][k] - anchor.small[fold][k];
+      });
+    }
+    this.kept.set(place, grams);
+    for (const other of this.kept.keys()) if (other < place - KEPT) this.kept.delete(other);
+    return grams;
+  }
 }
 
 /** Sum of some of the grams, without one: what a fold's training rows have. */

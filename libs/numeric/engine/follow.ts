@@ -1,4 +1,4 @@
-import { curvatureOf, sumOfGrams, type Curvature } from './curvature';
+import { curvatureOf, CurvaturesAlong, sumOfGrams, type Curvature } from './curvature';
 import { copyPoint, pointOf, residualAt, slopeAlong, type Lane, type Point } from './lane';
 import { LaneModel } from './lane-model';
 import type { Passes } from './passes';
@@ -25,8 +25,6 @@ export interface FollowOptions {
   readonly onArrival: (lane: number, place: number, residual: number, heldOut: number) => void;
 }
 
-/** Lambdas between two curvatures. */
-const REFRESH = 4;
 const MOST_PASSES = 40;
 const MOST_STALLED = 6;
 
@@ -71,22 +69,15 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
   }));
   const goal = 0.02 * tolerance;
   const finish = pointOf(size);
-  let grams: Float64Array[] = [];
-  let gramAt = -Infinity;
   const wholeWeight = full.totalWeight;
-  const refresh = (point: Point, standardisation: Standardisation, place: number): void => {
-    grams = passes.gram(point, standardisation);
-    gramAt = place;
-    states.forEach((state, lane) => {
-      const own = followers[lane].place;
-      if (Math.abs(own - place) > Math.abs(own - state.curvatureAt)) return;
-      state.curvature = null;
-      state.curvatureAt = place;
-    });
-  };
+  // A step leads from place to place: its curvature is that of the middle.
+  const along = new CurvaturesAlong(passes, full, (place) => between(guide, Math.min(place, guide.length - 1)));
   const curvatureFor = (lane: number): Curvature => {
-    const { leftOut, standardisation } = followers[lane];
-    return (states[lane].curvature ??= curvatureOf(sumOfGrams(grams, leftOut), size, wholeWeight / standardisation.totalWeight));
+    const { leftOut, standardisation, place } = followers[lane];
+    const state = states[lane];
+    if (state.curvature && state.curvatureAt === place) return state.curvature;
+    state.curvatureAt = place;
+    return (state.curvature = curvatureOf(sumOfGrams(along.gramsAt(place), leftOut), size, wholeWeight / standardisation.totalWeight));
   };
 
   followers.forEach((follower) => copyPoint(guide[0], follower.point));
@@ -98,8 +89,6 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
       'single',
       options.counted,
     );
-    let contraction = 0;
-    let worst = -1;
     for (const lane of riding) {
       const follower = followers[lane];
       const state = states[lane];
@@ -108,18 +97,12 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
       state.residual = residualAt(follower.point, follower.standardisation, lambdas[follower.place]);
       if (!state.travelled && was < Infinity && state.residual > 0.5 * was && state.residual > tolerance) {
         state.stalled++;
-        if (state.residual / was > contraction) {
-          contraction = state.residual / was;
-          worst = lane;
-        }
+        // Poor progress says that the curvature does not serve this lane: it gets one of its own point.
+        const own = passes.gram(follower.point, follower.standardisation);
+        state.curvature = curvatureOf(sumOfGrams(own, follower.leftOut), size, wholeWeight / follower.standardisation.totalWeight);
+        state.curvatureAt = follower.place;
       }
       if (!Number.isFinite(state.residual) || follower.passes > MOST_PASSES || state.stalled > MOST_STALLED) follower.failed = true;
-    }
-    const median = riding.map((lane) => followers[lane].place).sort((a, b) => a - b)[riding.length >> 1];
-    if (contraction > 0.5) refresh(followers[worst].point, followers[worst].standardisation, median);
-    else if (median >= gramAt + REFRESH / 2 || grams.length === 0) {
-      const middle = Math.min(Math.max(0, gramAt) + REFRESH, guide.length - 1);
-      refresh(guide[middle], full, middle);
     }
     for (const lane of riding) {
       if (followers[lane].failed) continue;
@@ -210,4 +193,11 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
       for (let k = 0; k < width; k++) result[k] += step * gram[row * width + k];
     }
   }
+}
+
+/** The middle of the guide's step to a place. */
+function between(guide: readonly Point[], place: number): { intercept: number; t: Float64Array } {
+  const to = guide[place];
+  const from = guide[Math.max(0, place - 1)];
+  return { intercept: (from.intercept + to.intercept) / 2, t: to.t.map((value, j) => (value + from.t[j]) / 2) };
 }

@@ -13,8 +13,13 @@ const MOST_CHUNK_ROWS = 32768;
 const LEAST_CHUNK_ROWS = 2048;
 const CHUNKS_OF_FEW_ROWS = 8;
 
-/** Rows that the curvature is taken from: beyond, the sampling error of the matrix no longer costs passes. */
-const GRAM_ROWS = 49152;
+/**
+ * Rows that curvatures are taken from. A large sample gives one that is right to about a per cent; what changes along a path is told by the difference
+ * of two small ones, whose sampling errors cancel.
+ */
+const LARGE_SAMPLE = 262_144;
+const SMALL_SAMPLE = 8192;
+const SMALL_SAMPLE_PER_COLUMN = 256;
 
 /** One internal column: coded ones in the order of the packs, then linear ones. */
 export interface InternalColumn {
@@ -25,6 +30,14 @@ export interface InternalColumn {
   readonly bins: number;
   /** Pack, or -1. */
   readonly pack: number;
+}
+
+export type Sample = 'large' | 'small';
+
+export interface GramUnits {
+  /** The first unit among all, and the fold of each with what its sums are multiplied by. */
+  readonly first: number;
+  readonly units: readonly { readonly fold: number; readonly share: number }[];
 }
 
 export interface Places {
@@ -80,7 +93,8 @@ export interface Layout {
   readonly chunks: number;
   /** A chunk lies in one fold. */
   readonly chunksOfFold: readonly { readonly start: number; readonly end: number }[];
-  readonly gramUnits: readonly { readonly fold: number; readonly share: number }[];
+  /** Units of the large sample, and of the small one; the same where there are few rows. */
+  readonly gramUnits: Readonly<Record<Sample, GramUnits>>;
   readonly gramSize: number;
   readonly workers: number;
   readonly at: Places;
@@ -163,7 +177,10 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
 
   const chunkRows = Math.min(MOST_CHUNK_ROWS, Math.max(LEAST_CHUNK_ROWS, Math.ceil(rows / CHUNKS_OF_FEW_ROWS)));
   const { chunks, chunksOfFold } = chunksOf(blocks, foldCount, Math.max(1, Math.floor(chunkRows / BLOCK)));
-  const units = gramUnitsOf(blocks, rows);
+  const large = gramUnitsOf(blocks, Math.floor(rows / LARGE_SAMPLE));
+  const smallStep = Math.floor(rows / Math.max(SMALL_SAMPLE, SMALL_SAMPLE_PER_COLUMN * columns.length));
+  const small = smallStep > 1 ? gramUnitsOf(blocks, smallStep) : [];
+  const units = [...large, ...small];
   const gramSize = (internal.length + 1 + 3) & ~3;
   const workers = options.workers ?? 1;
 
@@ -278,7 +295,10 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
     blocks: blocks.length,
     chunks: chunks.length,
     chunksOfFold,
-    gramUnits: units,
+    gramUnits: {
+      large: { first: 0, units: large },
+      small: small.length > 0 ? { first: large.length, units: small } : { first: 0, units: large },
+    },
     gramSize,
     workers,
     at,
@@ -331,9 +351,9 @@ function chunksOf(
 /** One unit per fold, at least four in all so that threads share them; every step-th block where there are rows enough. */
 function gramUnitsOf(
   blocks: readonly { rows: number; fold: number }[],
-  rows: number,
+  wantedStep: number,
 ): { fold: number; first: number; blocks: number; step: number; share: number }[] {
-  const step = Math.max(1, Math.floor(rows / GRAM_ROWS));
+  const step = Math.max(1, wantedStep);
   const units: { fold: number; first: number; blocks: number; step: number; share: number }[] = [];
   const folds = (blocks.at(-1)?.fold ?? 0) + 1;
   const pieces = Math.max(1, Math.ceil(4 / folds));

@@ -1,6 +1,6 @@
 import * as word from './kernels/descriptor';
 import type { Lane } from './lane';
-import { LANES_DOUBLE, LANES_SINGLE, type Layout } from './layout';
+import { LANES_DOUBLE, LANES_SINGLE, type Layout, type Sample } from './layout';
 import type { Standardisation } from './standardisation';
 import { Alone, type Crew } from './crew';
 
@@ -72,7 +72,6 @@ export class Passes {
       [word.LINEAR_SLOPES, at.slopes],
       [word.RESULTS, at.results],
       [word.BINS, bins],
-      [word.GRAM_UNITS, at.gramUnits],
       [word.GRAM_SIZE, gramSize],
       [word.GRAM_VALUES, at.gramValueTable],
       [word.GRAM_RESULTS, at.gramResults],
@@ -232,9 +231,10 @@ export class Passes {
    * Weighted Gram matrices of (1, columns) per fold at a point, of a sample of the rows scaled up, by total weight of all rows.
    * @returns folds x (columns + 1)^2, symmetric
    */
-  gram(point: { intercept: number; t: Float64Array }, standardisation: Standardisation): Float64Array[] {
+  gram(point: { intercept: number; t: Float64Array }, standardisation: Standardisation, sample: Sample = 'large'): Float64Array[] {
     const { layout, i32, f32, f64 } = this;
-    const { at, bins, columns, coded, linear, packs, folds, gramSize, gramUnits } = layout;
+    const { at, bins, columns, coded, linear, packs, folds, gramSize } = layout;
+    const { first, units } = layout.gramUnits[sample];
     const d = at.descriptionGram >> 2;
     i32[d + word.OFFSETS] = at.offset32;
     f64.fill(0, at.contributions >> 3, (at.contributions >> 3) + bins * 4);
@@ -258,11 +258,12 @@ export class Passes {
       place += packs[pack].codes * 4;
     }
     layout.machine.kernels.spread32(at.descriptionGram);
-    this.crew.run('gram', at.descriptionGram, gramUnits.length);
+    i32[d + word.GRAM_UNITS] = at.gramUnits + first * 12;
+    this.crew.run('gram', at.descriptionGram, units.length);
     const size = columns.length + 1;
     const total = layout.foldWeights.reduce((sum, w) => sum + w, 0);
     const grams = Array.from({ length: folds }, () => new Float64Array(size * size));
-    gramUnits.forEach(({ fold, share }, u) => {
+    units.forEach(({ fold, share }, u) => {
       const from = (at.gramResults >> 3) + u * gramSize * gramSize;
       const to = grams[fold];
       for (let a = 0; a < size; a++) {

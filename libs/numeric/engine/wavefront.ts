@@ -69,7 +69,7 @@ export function solvePath(passes: Passes, start: Point, targets: readonly Target
   let latest: Point = start;
   const refresh = (point: Point, place: number): void => {
     curvatureAt = place;
-    curvature = curvatureOf(sumOfGrams(passes.gram(point, s), -1), size);
+    curvature = curvatureOf(sumOfGrams(passes.gram(point, s, 'small'), -1), size);
   };
   /** The curvature near a place: taken anew only once the lanes have moved on, in the middle of those that have a point yet. */
   const near = (place: number): Curvature => {
