@@ -1,6 +1,7 @@
 /** Pure numbers of a scorecard: typed arrays in, plain results out. Imports nothing of the project. */
 export * from './errors';
 export * from './penalised/index';
+export * from './engine/index';
 export * from './binning/weight-of-evidence';
 export * from './binning/assignment';
 export * from './scaling/points';

@@ -61,6 +61,7 @@ const DESCRIPTION = 3;
 const DONE = 4;
 const ROUND = 5;
 const CLOSED = 6;
+const HELPED = 7;
 const PIECE_BITS = 16;
 const PIECE_MASK = 0xffff;
 const ROUNDS = 0x7fff;
@@ -79,6 +80,7 @@ export class Team implements Crew {
   private first = 0;
   private scratch = 0;
   private round = 0;
+  private piecesHelped = 0;
 
   /** @param send hands an order to a helping thread, which calls `help` with it */
   constructor(private readonly send: readonly ((order: HelpOrder) => void)[]) {}
@@ -88,6 +90,7 @@ export class Team implements Crew {
   }
 
   join(machine: Machine, at: CrewPlaces): void {
+    this.leave();
     this.machine = machine;
     this.words = new Int32Array(machine.buffer);
     this.first = at.control >> 2;
@@ -121,8 +124,14 @@ export class Team implements Crew {
     }
   }
 
+  /** Pieces that helpers have done in the work that is finished. */
+  get helped(): number {
+    return this.piecesHelped;
+  }
+
   leave(): void {
     if (this.machine && this.machine.shared !== null) {
+      this.piecesHelped += Atomics.load(this.words, this.first + HELPED);
       Atomics.store(this.words, this.first + CLOSED, 1);
       Atomics.store(this.words, this.first + ROUND, -1);
       Atomics.notify(this.words, this.first + ROUND);
@@ -146,21 +155,25 @@ export function help(order: HelpOrder): void {
       continue;
     }
     seen = round;
-    if (round > 0 || Atomics.load(words, first + CLOSED) === 0) takePieces(machine, words, first, round, order.scratch);
+    const pieces = takePieces(machine, words, first, round, order.scratch);
+    if (pieces > 0) Atomics.add(words, first + HELPED, pieces);
   }
 }
 
-function takePieces(machine: Machine, words: Int32Array, first: number, round: number, scratch: number): void {
+/** Does pieces of a round until none is left, or another round has begun; returns how many. */
+function takePieces(machine: Machine, words: Int32Array, first: number, round: number, scratch: number): number {
+  let pieces = 0;
   while (true) {
     const claim = Atomics.load(words, first + CLAIM);
-    if (claim >>> PIECE_BITS !== round) return;
+    if (claim >>> PIECE_BITS !== round) return pieces;
     const piece = claim & PIECE_MASK;
     const count = Atomics.load(words, first + COUNT);
     const work = Atomics.load(words, first + WORK);
     const description = Atomics.load(words, first + DESCRIPTION);
-    if (piece >= count) return;
+    if (piece >= count) return pieces;
     if (Atomics.compareExchange(words, first + CLAIM, claim, claim + 1) !== claim) continue;
     machine.kernels[WORKS[work]](description, piece, scratch);
+    pieces++;
     if (Atomics.add(words, first + DONE, 1) + 1 === count) Atomics.notify(words, first + DONE);
   }
 }

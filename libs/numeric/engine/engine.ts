@@ -38,6 +38,8 @@ export interface EngineFolds {
   /** Values by code of each column in a fold (number from 1), computed from its training rows; null = those of the problem. */
   readonly valuesForFold?: (fold: number) => readonly ArrayLike<number>[] | null;
   readonly onFold?: (done: number, count: number) => void;
+  /** Share of the work done, after every pass. */
+  readonly onProgress?: (share: number) => void;
   readonly onFoldFit?: (fold: number, index: number, fit: { intercept: number; coefficients: Float64Array; optimalityResidual: number }) => void;
 }
 
@@ -339,6 +341,10 @@ export class Engine {
         lambdas,
         tolerance: Math.max(SINGLE_TOLERANCE, (options.tolerance ?? PATH_TOLERANCE) * 0.9),
         counted: false,
+        onPass: () => {
+          const places = followers.reduce((sum, { place }) => sum + place, 0);
+          options.onProgress?.((first * lambdas.length + places) / (layout.folds * lambdas.length));
+        },
         onArrival: (lane, place, residual, heldOut) => {
           const fold = first + lane;
           deviances[fold][place] = 2 * heldOut;

@@ -21,6 +21,8 @@ export interface FollowOptions {
   readonly tolerance: number;
   /** Rows count as the passes' counts say. */
   readonly counted: boolean;
+  /** After every pass; it may throw to stop. */
+  readonly onPass?: () => void;
   /** A follower has arrived at a place, with its point; `heldOut` is its mean loss over the fold that it leaves out. */
   readonly onArrival: (lane: number, place: number, residual: number, heldOut: number) => void;
 }
@@ -89,6 +91,7 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
       'single',
       options.counted,
     );
+    options.onPass?.();
     for (const lane of riding) {
       const follower = followers[lane];
       const state = states[lane];

@@ -1,10 +1,12 @@
 import {
-  crossValidate,
   deviance,
-  fitPath,
+  fastCrossValidation,
+  fastPath,
   linearPredictor,
   summarise,
   type CrossValidation,
+  type EngineChoice,
+  type Fit,
   type FitProblem,
   type FoldResult,
 } from '@tallystone/numeric';
@@ -17,7 +19,7 @@ import type { CodeMatrix, Term } from './types';
 
 export type CrossValidated = Omit<CrossValidation, 'optimalityResidual' | 'converged'>;
 
-/** Largest optimality residual of a fold's fit (numerics: 1e-6 is enough for folds; this leaves room). */
+/** Largest optimality residual of a fold's fit where the oracle fits it (1e-6 is enough for folds; this leaves room). */
 const FOLD_TOLERANCE = 1e-8;
 
 export interface CrossValidationInput {
@@ -28,8 +30,11 @@ export interface CrossValidationInput {
   terms: readonly Term[];
   problem: FitProblem;
   lambdas: readonly number[];
+  /** Fits of all rows at the lambdas. */
+  fits: readonly Fit[];
   mixing: number;
   onFold?: (done: number, count: number) => void;
+  crewFor?: EngineChoice['crewFor'];
 }
 
 /**
@@ -48,12 +53,16 @@ export function crossValidated(input: CrossValidationInput): { result: CrossVali
       classed === null
         ? undefined
         : (fold: number, training: Uint8Array) => columnsOf(terms, classed.classed(fold, training), problem);
+    const count = folds.reduce((most, fold) => Math.max(most, fold), 0);
     const options = {
       tolerance: FOLD_TOLERANCE,
+      path: input.fits,
       onFold: input.onFold,
+      onProgress: (share: number) => input.onFold?.(share * count, count),
+      crewFor: input.crewFor,
       ...(columnsForFold === undefined ? {} : { columnsForFold }),
     };
-    return { result: crossValidate(problem, folds, lambdas, options), heldByHand: classed?.heldByHand ?? 0 };
+    return { result: fastCrossValidation(problem, folds, lambdas, options), heldByHand: classed?.heldByHand ?? 0 };
   }
   return { result: foldByFold(input, folds, classed), heldByHand: classed?.heldByHand ?? 0 };
 }
@@ -90,7 +99,7 @@ function foldByFold(input: CrossValidationInput, folds: Uint8Array, classed: Fol
     const heldOutcome = Uint8Array.from(outside, (index) => fitRows.outcome[index]);
     const heldWeights = fitRows.weights === null ? undefined : pick(fitRows.weights, outside);
     const weight = heldWeights === undefined ? outside.length : heldWeights.reduce((sum, value) => sum + value, 0);
-    const { fits } = fitPath(part, { lambdas }, { tolerance: FOLD_TOLERANCE });
+    const { fits } = fastPath(part, { lambdas }, { tolerance: FOLD_TOLERANCE, crewFor: input.crewFor });
     results.push({
       fold,
       weight,

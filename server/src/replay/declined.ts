@@ -1,4 +1,4 @@
-import { fitAt, quantileType7 } from '@tallystone/numeric';
+import { fastFit, quantileType7 } from '@tallystone/numeric';
 import type { Characteristic, Specification } from '@tallystone/contracts/specification/types';
 import { designColumns, etaOf, modelTables, penaltyOf, problemOf, termsOf, type ModelTables } from './design';
 import { declinedRows, fitRowsOf, inDevelopment, type FitRows } from './fit-rows';
@@ -61,7 +61,7 @@ function auxiliary(spec: Specification, coded: CodeMatrix, coding: FitRows, targ
   const tables = woeTables(plain, coding, spec.woe);
   const terms = termsOf(plain, tables, false);
   const penalty = { ...penaltyOf(spec, plain, terms, 0), standardize: true };
-  const fit = fitAt(problemOf(designColumns(terms, plain, tables, target), target, penalty), AUXILIARY_LAMBDA);
+  const fit = fastFit(problemOf(designColumns(terms, plain, tables, target), target, penalty), AUXILIARY_LAMBDA);
   return modelTables(fit, terms, plain, tables);
 }
 

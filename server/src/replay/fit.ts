@@ -1,4 +1,4 @@
-import { fitAt, fitIndependently, fitPath, NumericError, type Fit, type FitProblem, type Grid } from '@tallystone/numeric';
+import { fastFit, fastPath, fitIndependently, NumericError, type EngineChoice, type Fit, type FitProblem, type Grid } from '@tallystone/numeric';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import { adjusted } from './adjust';
 import { crossValidated, type CrossValidated } from './cross-validation';
@@ -28,7 +28,10 @@ export interface FitRequest {
   method?: Method;
   /** May throw to stop the work; called between fits. */
   onFit?: (done: number, count: number) => void;
+  /** Called with parts of a fold too, where folds are fitted together. */
   onFold?: (done: number, count: number) => void;
+  /** Threads to share the work with; the numbers are the same without. */
+  crewFor?: EngineChoice['crewFor'];
 }
 
 /** Everything before a penalty is chosen, for one mixing. */
@@ -76,8 +79,9 @@ export function trainPaths(request: FitRequest): TrainedPath[] {
     const mixings = Array.isArray(spec.fit.mixing) ? spec.fit.mixing : [spec.fit.mixing];
     return mixings.map((mixing): TrainedPath => {
       const problem = problemOf(columns, fitRows, penaltyOf(spec, coded, terms, mixing));
-      const path = fitPath(problem, gridOf(spec), {
+      const path = fastPath(problem, gridOf(spec), {
         tolerance: TOLERANCE,
+        crewFor: request.crewFor,
         onFit: (_, index, count) => request.onFit?.(index + 1, count),
       });
       const lambdas = path.fits.map((fit) => fit.lambda);
@@ -92,8 +96,10 @@ export function trainPaths(request: FitRequest): TrainedPath[] {
               terms,
               problem,
               lambdas,
+              fits: path.fits,
               mixing,
               onFold: request.onFold,
+              crewFor: request.crewFor,
             });
       return {
         mixing,
@@ -143,7 +149,7 @@ export function finishFit(request: FitRequest, trained: TrainedPath, index: numb
     const { lambda } = trained.fits[index];
     const independent = request.method === 'independent';
     const solve = (problem: FitProblem, at: number): Fit =>
-      independent ? fitIndependently(problem, at, { tolerance: TOLERANCE }) : fitAt(problem, at, { tolerance: TOLERANCE });
+      independent ? fitIndependently(problem, at, { tolerance: TOLERANCE }) : fastFit(problem, at, { tolerance: TOLERANCE, crewFor: request.crewFor });
     let fit = independent ? solve(trained.problem, lambda) : trained.fits[index];
     let { terms } = trained;
     let rows = trained.fitRows;

@@ -19,6 +19,7 @@ export interface ReplayRequest {
   method?: Method;
   onFit?: FitRequest['onFit'];
   onFold?: FitRequest['onFold'];
+  crewFor?: FitRequest['crewFor'];
 }
 
 export interface Replayed {
@@ -47,7 +48,8 @@ export function replay(request: ReplayRequest): Replayed {
   }
   const prepared = prepare(specification, source);
   const coded = codeCharacteristics(specification, source, prepared);
-  const fitted = fitCoded({ specification, prepared, coded, source, method, onFit: request.onFit, onFold: request.onFold });
+  const { onFit, onFold, crewFor } = request;
+  const fitted = fitCoded({ specification, prepared, coded, source, method, onFit, onFold, crewFor });
   const result = buildResult({ ...request, prepared, coded, fitted });
   return { result, prepared, coded, fitted };
 }

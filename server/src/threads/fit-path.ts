@@ -8,6 +8,7 @@ import { type TrainedPath, keptOf, trainPaths } from '../replay/fit';
 import { prepare } from '../replay/prepare';
 import { ReplayError, type ReplayProblem } from '../replay/problems';
 import type { SourceColumn } from '../replay/source';
+import { crewFor } from './crew';
 import type { Task } from './task';
 
 export interface FitPathPayload {
@@ -51,6 +52,7 @@ export const fitPenaltyPath: Task<FitPathPayload, FitPathAnswer> = ({ specificat
       prepared,
       coded,
       source,
+      crewFor,
       onFit: (done, count) => {
         goOn();
         progress('Fitting the path', (shareOf.path * done) / count);

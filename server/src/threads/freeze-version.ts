@@ -7,6 +7,7 @@ import { replay } from '../replay/replay';
 import { scoreFingerprint } from '../replay/score-fingerprint';
 import type { SourceColumn } from '../replay/source';
 import { NO_BIN } from '../replay/types';
+import { crewFor } from './crew';
 import type { Task } from './task';
 
 export interface FreezePayload {
@@ -47,6 +48,7 @@ export const freezeVersion: Task<FreezePayload, FreezeAnswer> = ({ specification
       specification,
       ...rest,
       source: { rows, column: (name) => columns.get(name) },
+      crewFor,
       onFit: (done, count) => {
         goOn();
         progress('Fitting the path', (0.12 * done) / count);

@@ -1,9 +1,10 @@
-import { resampleFits } from '@tallystone/numeric';
+import { fastResamples } from '@tallystone/numeric';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import { codeCharacteristics } from '../replay/coding';
 import { choosePenalty, trainPaths } from '../replay/fit';
 import { prepare } from '../replay/prepare';
 import type { SourceColumn } from '../replay/source';
+import { crewFor } from './crew';
 import type { Task } from './task';
 
 export interface ResamplePayload {
@@ -31,9 +32,9 @@ export const resampleVersion: Task<ResamplePayload, ResampleDraw[]> = ({ specifi
   const source = { rows, column: (name: string) => columns.get(name) };
   const prepared = prepare(specification, source);
   const coded = codeCharacteristics(specification, source, prepared);
-  const { path, index } = choosePenalty(specification, trainPaths({ specification, prepared, coded, source }));
+  const { path, index } = choosePenalty(specification, trainPaths({ specification, prepared, coded, source, crewFor }));
   const start = path.fits[index];
-  return resampleFits(path.problem, start.lambda, {
+  return fastResamples(path.problem, start.lambda, {
     seed,
     first,
     count,
@@ -42,5 +43,5 @@ export const resampleVersion: Task<ResamplePayload, ResampleDraw[]> = ({ specifi
       if (cancelled()) throw new Error('The study was cancelled');
       progress('Refitting resamples', done / all);
     },
-  });
+  }).draws;
 };

@@ -1,0 +1,66 @@
+import { createHash } from 'node:crypto';
+import { Worker } from 'node:worker_threads';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { Engine, Generator, Team, codedColumns, type CodedProblem, type Crew, type HelpOrder } from '@tallystone/numeric';
+import { randomProblem } from '../../../libs/numeric/testing/problems';
+import { besideThis } from './beside-this';
+import { crewFor } from './crew';
+
+const ROWS = 20_000;
+const grid = { count: 30, smallestRatio: 1e-3, earlyStop: false };
+
+function problem(): CodedProblem {
+  const { columns, outcome } = randomProblem(8, ROWS, 9, { mixing: 1, standardize: true });
+  const random = new Generator(3);
+  return {
+    columns: [...codedColumns(columns.slice(1)), { kind: 'linear', values: columns[0].map((value) => value + random.normal()) }],
+    outcome,
+    weights: Float64Array.from(outcome, () => 0.5 + random.uniform()),
+    penalty: { mixing: 1, standardize: true },
+  };
+}
+
+/** Every bit of a path, a cross-validation and some resamples. */
+function everything(crew?: Crew): string {
+  const hash = createHash('sha256');
+  const numbers = (...values: ArrayLike<number>[]): void => values.forEach((some) => void hash.update(Float64Array.from(some)));
+  const engine = new Engine(problem(), { crew, folds: Uint8Array.from({ length: ROWS }, (_, i) => (i % 5) + 1), counted: true });
+  const { fits } = engine.path(grid, { tolerance: 1e-9 });
+  fits.forEach((fit) => numbers([fit.intercept, fit.deviance, fit.objective, fit.optimalityResidual], fit.coefficients));
+  const lambdas = fits.map(({ lambda }) => lambda);
+  engine.crossValidate(lambdas).folds.forEach((fold) => numbers(fold?.deviance ?? []));
+  engine.resample(lambdas.slice(20, 21), { seed: 5, count: 9 }, (draw) => numbers([draw.intercept], draw.coefficients));
+  engine.close();
+  return hash.digest('hex');
+}
+
+describe('threads that share a fit', () => {
+  const workers: Worker[] = [];
+  const send = (k: number) => (order: HelpOrder) => workers[k].postMessage(order);
+
+  beforeAll(async () => {
+    for (let k = 0; k < 3; k++) workers.push(new Worker(besideThis('helper-entry'), { execArgv: [] }));
+    await Promise.all(workers.map((worker) => new Promise((resolve) => worker.once('online', resolve))));
+  });
+  afterAll(async () => void (await Promise.all(workers.map((worker) => worker.terminate()))));
+
+  const alone = everything();
+
+  it('give the same bits on one, two and four threads, and the helpers take part', () => {
+    for (const helpers of [1, 3]) {
+      const team = new Team(Array.from({ length: helpers }, (_, k) => send(k)));
+      // A helper may be late to its first fit; by the third it has been there for a while.
+      for (let fit = 0; fit < 20 && (fit < 2 || team.helped === 0); fit++) expect(everything(team)).toBe(alone);
+      expect(team.helped).toBeGreaterThan(0);
+    }
+  });
+
+  it('give the same bits when a helper never comes', () => {
+    expect(everything(new Team([() => {}]))).toBe(alone);
+  });
+
+  it('are used for what is worth it', () => {
+    expect(crewFor(1000).helpers).toBe(0);
+    expect(everything(crewFor(5_000_000))).toBe(alone);
+  });
+});
