@@ -16,7 +16,7 @@ test('fits in a web worker what the server fits, to 1e-12', async ({ page }) => 
   page.on('console', (message) => message.type() === 'error' && faults.push(message.text()));
   page.on('pageerror', (error) => faults.push(error.message));
   await page.goto(site.url);
-  const there = (await page.evaluate(`window.fit(${JSON.stringify(order)})`)) as InventedFit;
+  const there = await page.evaluate<InventedFit>(`window.fit(${JSON.stringify(order)})`);
   const here = fitInvented(order);
   expect(faults).toEqual([]);
   expect(there.solver).toBe('engine, engine');
