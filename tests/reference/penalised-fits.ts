@@ -1,5 +1,5 @@
 import type { FitProblem } from '@tallystone/numeric';
-import { Table, expected } from './reference-files';
+import { Table, expected } from './reference-data';
 
 /**
  * Source of the numbers: glmnet 4.1-6 (Debian r-cran-glmnet) at threshold 1e-26 and an independent Newton solve on the active set, which agree to
@@ -72,8 +72,8 @@ function weightsOf(fit: ReferenceFit, event: Float64Array): Float64Array | undef
  * The reference problem in the orientation of this project: y = 1 good, eta = ln(good:bad). Where the reference fits the event, coefficients change
  * sign (`sign` -1) and limits change sides.
  */
-export function problemOf(fit: ReferenceFit): { problem: FitProblem; sign: 1 | -1 } {
-  const table = tableOf(fit.data);
+export function problemOf(fit: ReferenceFit, tables = tableOf): { problem: FitProblem; sign: 1 | -1 } {
+  const table = tables(fit.data);
   const columns = fit.x.map((name) => table.numbers(name));
   const fitsGood = fit.y.startsWith('good');
   const event = table.numbers(fitsGood ? 'bad' : fit.y);

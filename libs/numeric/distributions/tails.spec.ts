@@ -22,6 +22,27 @@ describe('distributions', () => {
     expect(chiSquareTail(Infinity, 3)).toBe(0);
   });
 
+  it('the normal quantile keeps its digits in the tail', () => {
+    // R 4.2.2, qnorm (algorithm AS 241 of M. J. Wichura, Applied Statistics 37, 1988): exact to the last digits of a double.
+    const wanted: [number, number][] = [
+      [1e-100, -21.27345356096532],
+      [1e-12, -7.034483825301132],
+      [1e-7, -5.199337582192817],
+      [0.1, -1.2815515655446008],
+      [0.999999999, 5.997807019601638],
+    ];
+    wanted.forEach(([p, z]) => expect(Math.abs(normalQuantile(p) / z - 1)).toBeLessThan(1e-14));
+    expect([normalQuantile(0), normalQuantile(0.5), normalQuantile(1)]).toEqual([-Infinity, 0, Infinity]);
+    expect(() => normalQuantile(NaN)).toThrow('p is NaN');
+    expect(() => normalQuantile(1.1)).toThrow();
+    fc.assert(
+      fc.property(fc.double({ min: 2, max: 100, noNaN: true }), (digits) => {
+        const p = 10 ** -digits;
+        expect(Math.abs(normalTail(-normalQuantile(p)) / p - 1)).toBeLessThan(1e-12);
+      }),
+    );
+  });
+
   it('chi-square with 2 degrees of freedom is exponential', () => {
     fc.assert(
       fc.property(fc.double({ min: 0, max: 200, noNaN: true }), (x) => {

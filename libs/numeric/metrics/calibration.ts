@@ -23,9 +23,28 @@ export interface HosmerLemeshow {
   readonly table: readonly HosmerLemeshowGroup[];
 }
 
+/** The group of a PD: the first whose upper edge it does not pass. */
+function groupOf(pd: number, edges: readonly number[]): number {
+  let low = 0;
+  let high = Math.max(0, edges.length - 2);
+  while (low < high) {
+    const middle = (low + high) >> 1;
+    if (pd <= edges[middle + 1]) high = middle;
+    else low = middle + 1;
+  }
+  return low;
+}
+
+/** Edges without those that are the upper end of a group that no row lies in. */
+function withoutEmpty(edges: readonly number[], pd: ArrayLike<number>): number[] {
+  const filled = new Set(Array.from(pd, (value) => groupOf(value, edges)));
+  return edges.filter((_, i) => i === 0 || filled.has(i - 1));
+}
+
 /**
- * Hosmer and Lemeshow's test: groups by type 7 quantiles of PD, right-closed, equal edges merged; statistic sum (O - E)^2 / (E (1 - E/n)).
- * Degrees of freedom are G - 2 on the rows the model was developed on and G on others, G counted after merging.
+ * Hosmer and Lemeshow's test: groups by type 7 quantiles of PD, right-closed, equal edges merged, rows of equal PD kept together; statistic
+ * sum (O - E)^2 / (E (1 - E/n)). A quantile can fall between two neighbouring PDs and cut off a stretch without rows, which joins the group above
+ * it. Degrees of freedom are G - 2 on the rows the model was developed on and G on others, G counted after merging.
  * @param pd n probabilities of bad
  * @param outcome n values, 1 good, 0 bad
  * @example hosmerLemeshow(pd, outcome, { groups: 10, development: true }).degreesOfFreedom // 8
@@ -43,23 +62,18 @@ export function hosmerLemeshow(
     pd,
     Array.from({ length: asked + 1 }, (_, i) => i / asked),
   );
-  const edges = cuts.filter((cut, i) => i === 0 || cut !== cuts[i - 1]);
+  const distinct = cuts.filter((cut, i) => i === 0 || cut !== cuts[i - 1]);
+  const edges = withoutEmpty(distinct, pd);
   // With a single distinct PD one group is left, both of its ends that PD.
   const groups = Math.max(1, edges.length - 1);
   const rows = new Float64Array(groups);
   const bads = new Float64Array(groups);
   const expected = new Float64Array(groups);
   for (let i = 0; i < pd.length; i++) {
-    let low = 0;
-    let high = groups - 1;
-    while (low < high) {
-      const middle = (low + high) >> 1;
-      if (pd[i] <= edges[middle + 1]) high = middle;
-      else low = middle + 1;
-    }
-    rows[low] += 1;
-    bads[low] += 1 - outcome[i];
-    expected[low] += pd[i];
+    const group = groupOf(pd[i], edges);
+    rows[group] += 1;
+    bads[group] += 1 - outcome[i];
+    expected[group] += pd[i];
   }
   let statistic = 0;
   const table: HosmerLemeshowGroup[] = [];

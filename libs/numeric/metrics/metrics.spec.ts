@@ -140,6 +140,17 @@ describe('probabilities', () => {
     expect([single.groups, single.pValue]).toEqual([1, null]);
   });
 
+  it('a quantile between two PDs makes no group without rows', () => {
+    // 21 rows of 0.1 and 19 of 0.2 with the median at 0.1 and a 52.5 % quantile between: of forty groups two are left.
+    const pd = Array.from({ length: 40 }, (_, i) => (i < 21 ? 0.1 : 0.2));
+    const outcome = pd.map((_, i) => (i % 5 === 0 ? 0 : 1));
+    const test = hosmerLemeshow(pd, outcome, { groups: 40, development: false });
+    expect(test.table.map(({ rows }) => rows)).toEqual([21, 19]);
+    expect([test.groups, test.degreesOfFreedom]).toEqual([2, 2]);
+    // By hand: 5 bads where 2.1 are expected, 3 where 3.8 are.
+    expect(test.statistic).toBeCloseTo(2.9 ** 2 / (2.1 * 0.9) + 0.8 ** 2 / (3.8 * 0.8), 12);
+  });
+
   it('the prior correction undoes itself', () =>
     expect(priorCorrectedIntercept(priorCorrectedIntercept(0.7, 0.3, 0.04), 0.04, 0.3)).toBeCloseTo(0.7, 12));
 });
