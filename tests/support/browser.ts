@@ -1,4 +1,4 @@
-import { test as base, expect } from '@playwright/test';
+import { type Page, test as base, expect } from '@playwright/test';
 import type { SignIn } from './installation';
 
 interface Fixtures {
@@ -23,15 +23,7 @@ export const test = base.extend<Fixtures>({
   // eslint-disable-next-line no-empty-pattern -- as above
   signIns: async ({}, use) => use(JSON.parse(process.env['TALLYSTONE_E2E_SIGN_INS'] ?? '[]') as SignIn[]),
   signInAs: async ({ page, signIns }, use) => {
-    await use(async (role) => {
-      const person = signIns.find((signIn) => signIn.role === role);
-      if (!person) throw new Error(`The demo has no ${role}.`);
-      await page.goto('/sign-in');
-      await page.getByLabel('E-mail address').fill(person.email);
-      await page.getByLabel('Password', { exact: true }).fill(person.password);
-      await page.getByRole('button', { name: 'Sign in' }).click();
-      await expect(page).not.toHaveURL(/sign-in/, { timeout: 30_000 });
-    });
+    await use((role) => signIn(page, signIns, role));
   },
   cleanPages: [
     async ({ context }, use) => {
@@ -50,3 +42,14 @@ export const test = base.extend<Fixtures>({
 });
 
 export { expect };
+
+/** Signs a person of the demo in on a page, by role. */
+export async function signIn(page: Page, signIns: readonly SignIn[], role: string): Promise<void> {
+  const person = signIns.find((known) => known.role === role);
+  if (!person) throw new Error(`The demo has no ${role}.`);
+  await page.goto('/sign-in');
+  await page.getByLabel('E-mail address').fill(person.email);
+  await page.getByLabel('Password', { exact: true }).fill(person.password);
+  await page.getByRole('button', { name: 'Sign in' }).click();
+  await expect(page).not.toHaveURL(/sign-in/, { timeout: 30_000 });
+}

@@ -52,9 +52,14 @@ export const routes: Routes = [
         ],
       },
       { path: 'models', loadChildren: () => import('./features/models/models.routes').then((m) => m.inventoryRoutes) },
-      { path: 'reviews', loadChildren: () => import('./features/validation/validation.routes').then((m) => m.reviewRoutes) },
+      {
+        path: 'reviews',
+        canMatch: [able('reviews.read')],
+        loadChildren: () => import('./features/validation/validation.routes').then((m) => m.reviewRoutes),
+      },
       {
         path: 'documents',
+        canMatch: [able('documents.read')],
         loadChildren: () => import('./features/documentation/documentation.routes').then((m) => m.documentRoutes),
       },
       {

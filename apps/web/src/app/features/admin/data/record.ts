@@ -49,9 +49,9 @@ export function recordPage(filter: () => RecordFilter): HttpResourceRef<RecordPa
   });
 }
 
-/** The last link of the chain. Call in an injection context. */
-export function recordHead(): HttpResourceRef<RecordHead | undefined> {
-  return httpResource<RecordHead>(() => '/api/record/head');
+/** The last link of the chain, once it is wanted: it is told to those who may verify it. Call in an injection context. */
+export function recordHead(wanted: () => boolean): HttpResourceRef<RecordHead | undefined> {
+  return httpResource<RecordHead>(() => (wanted() ? '/api/record/head' : undefined));
 }
 
 @Injectable({ providedIn: 'root' })

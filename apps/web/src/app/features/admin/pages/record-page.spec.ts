@@ -3,6 +3,7 @@ import { HttpTestingController, provideHttpClientTesting } from '@angular/common
 import { TestBed } from '@angular/core/testing';
 import { Router, provideRouter, withComponentInputBinding } from '@angular/router';
 import { RouterTestingHarness } from '@angular/router/testing';
+import { Session } from '../../../core/session';
 import type { RecordEntry } from '../data/record';
 import { RecordPage } from './record-page';
 
@@ -51,7 +52,7 @@ describe('RecordPage', () => {
     return new URLSearchParams(request.request.params.toString());
   }
 
-  beforeEach(async () => {
+  async function open(abilities: readonly string[]): Promise<void> {
     TestBed.configureTestingModule({
       providers: [
         provideHttpClient(),
@@ -60,14 +61,30 @@ describe('RecordPage', () => {
       ],
     });
     server = TestBed.inject(HttpTestingController);
+    const session = TestBed.inject(Session).load();
+    server.expectOne('/api/session').flush({ user: null, abilities, demo: true });
+    await session;
     harness = await RouterTestingHarness.create();
     void harness.navigateByUrl('/record?entity=person&from=2026-11-01');
     await new Promise((resolve) => setTimeout(resolve));
     harness.fixture.detectChanges();
+  }
+
+  async function openToVerify(): Promise<void> {
+    await open(['record.read', 'record.verify']);
     server.expectOne('/api/record/head').flush({ sequence: 1240, hash: 'cd'.repeat(32) });
+  }
+
+  it('asks for the head of the chain only on behalf of those who may verify it', async () => {
+    await open(['record.read']);
+    await answer([entry(12)], null);
+    server.expectNone('/api/record/head');
+    expect(page().textContent).not.toContain('Head of the chain');
+    expect(page().textContent).not.toContain('Verify the chain');
   });
 
   it('reads its filter from the address and shows before and after', async () => {
+    await openToVerify();
     const asked = await answer([entry(12), entry(11)], 11);
     expect(asked.get('entity')).toBe('person');
     expect(asked.get('from')).toBe(new Date('2026-11-01T00:00:00').toISOString());
@@ -79,6 +96,7 @@ describe('RecordPage', () => {
   });
 
   it('goes to older entries by key, and starts again when the filter changes', async () => {
+    await openToVerify();
     await answer([entry(12), entry(11)], 11);
     await pressed('Older entries');
     const older = await answer([entry(10, { withheld: true, before: null, after: null })], null);

@@ -76,7 +76,7 @@ export class RecordPage {
     before: this.before(),
   }));
   protected readonly page = recordPage(this.filter);
-  protected readonly head = recordHead();
+  protected readonly head = recordHead(() => this.mayVerify());
   protected readonly entries = computed(() => (this.page.hasValue() ? this.page.value().entries : null));
   protected readonly next = computed(() => (this.page.hasValue() ? this.page.value().next : null));
   protected readonly narrowed = computed(() =>

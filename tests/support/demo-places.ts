@@ -1,0 +1,83 @@
+import { randomUUID } from 'node:crypto';
+import { readFileSync, readdirSync } from 'node:fs';
+import { join } from 'node:path';
+import type { BinningList, CharacteristicList } from '@tallystone/contracts/binnings/schema';
+import type { FitList } from '@tallystone/contracts/fits/schema';
+import type { Model, ModelList } from '@tallystone/contracts/models/schema';
+import type { SampleList } from '@tallystone/contracts/samples/schema';
+import type { VersionList } from '@tallystone/contracts/versions/schema';
+import type { Page } from '@playwright/test';
+
+/** Where the demo's things lie: the parts of the client's addresses. */
+export interface DemoPlaces {
+  readonly modelId: string;
+  readonly modelName: string;
+  readonly sampleId: string;
+  readonly binningId: string;
+  /** Ids of the characteristics of the binning, by column. */
+  readonly characteristics: Readonly<Record<string, string>>;
+  /** Ids of the fits, by name. */
+  readonly fits: Readonly<Record<string, string>>;
+  readonly versionId: string;
+}
+
+/** Reads where the demo's things lie, through the API, on the page of somebody who looks inside its model. */
+export async function readDemoPlaces({ request }: Page): Promise<DemoPlaces> {
+  const read = async <T>(address: string): Promise<T> => {
+    const response = await request.get(address);
+    if (!response.ok()) throw new Error(`${response.status()} ${address}`);
+    return (await response.json()) as T;
+  };
+  const model = (await read<ModelList>('/api/models')).models.find(({ inventoryNumber }) => inventoryNumber === 'M-0001')!;
+  const of = `/api/models/${model.id}`;
+  const { samples } = await read<SampleList>(`${of}/samples`);
+  const { binnings } = await read<BinningList>(`${of}/binnings`);
+  const { characteristics } = await read<CharacteristicList>(`/api/binnings/${binnings[0].id}/characteristics`);
+  const { fits } = await read<FitList>(`${of}/fits`);
+  const { versions } = await read<VersionList>(`${of}/versions`);
+  return {
+    modelId: model.id,
+    modelName: model.name,
+    sampleId: samples[0].id,
+    binningId: binnings[0].id,
+    characteristics: Object.fromEntries(characteristics.map(({ column, id }) => [column, id])),
+    fits: Object.fromEntries(fits.map(({ name, id }) => [name, id])),
+    versionId: versions[0].id,
+  };
+}
+
+async function post<T>(page: Page, address: string, data: unknown): Promise<T> {
+  const token = (await page.context().cookies()).find(({ name }) => name === 'XSRF-TOKEN')?.value ?? '';
+  const response = await page.request.post(address, { data, headers: { 'X-XSRF-TOKEN': token, 'Idempotency-Key': randomUUID() } });
+  if (!response.ok()) throw new Error(`${response.status()} ${address}: ${await response.text()}`);
+  return (await response.json()) as T;
+}
+
+/** A model that nobody has worked on yet, entered by the modeller on whose page this is. */
+export const enterEmptyModel = (page: Page): Promise<Model> =>
+  post<Model>(page, '/api/models', {
+    name: 'Credit cards, behavioural scorecard',
+    purpose: 'Ranks open accounts by the odds that they stay in order over the next twelve months.',
+    product: 'Credit card',
+    population: 'Accounts open for six months or longer, in order when scored',
+    jurisdiction: 'To be confirmed by counsel',
+    owner: 'Head of Credit Risk, Saltmarsh Mutual',
+    materialityTier: 2,
+  });
+
+/** Invites a person from an admin's page and takes the token out of the letter, which the demo keeps as a file. */
+export async function inviteByMail(page: Page): Promise<string> {
+  const email = `newcomer-${randomUUID().slice(0, 8)}@saltmarsh.example`;
+  await post(page, '/api/invitations', { name: 'Nia Newcomer', email, roles: ['validator'] });
+  const folder = join(process.env['TALLYSTONE_E2E_DATA']!, 'mail');
+  for (let tries = 0; tries < 100; tries += 1) {
+    for (const name of readdirSync(folder)) {
+      // Quoted-printable breaks long lines with an equals sign at their end.
+      const letter = readFileSync(join(folder, name), 'utf8').replaceAll(/=\r?\n/g, '');
+      const token = letter.includes(email) ? /\/invitation\/([\w-]+)/.exec(letter)?.[1] : undefined;
+      if (token) return token;
+    }
+    await page.waitForTimeout(100);
+  }
+  throw new Error(`No letter to ${email} has come`);
+}
