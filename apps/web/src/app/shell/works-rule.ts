@@ -6,12 +6,14 @@ import {
   computed,
   inject,
   input,
+  signal,
   viewChildren,
 } from '@angular/core';
 import { toSignal } from '@angular/core/rxjs-interop';
 import { NavigationEnd, Router, RouterLink } from '@angular/router';
 import type { WorkStep } from '@tallystone/contracts/models/schema';
 import { filter, map } from 'rxjs';
+import { ElementWidth } from '../ui/element-width';
 
 const titles: Readonly<Record<WorkStep['step'], string>> = {
   sample: 'Sample',
@@ -39,10 +41,10 @@ const said: Readonly<Record<WorkStep['state'], string>> = {
 @Component({
   selector: 'ts-works-rule',
   changeDetection: ChangeDetectionStrategy.OnPush,
-  imports: [RouterLink],
+  imports: [RouterLink, ElementWidth],
   template: `
     <nav aria-label="Steps of the work">
-      <ol [style.--count]="steps().length">
+      <ol [style.--count]="steps().length" (tsWidth)="width.set($event)">
         @for (entry of shown(); track entry.step) {
           <li #item [class]="entry.state" [class.come]="entry.come" [class.on]="entry.on" [class.last]="$last">
             <a [routerLink]="entry.path" [attr.aria-current]="entry.on ? 'step' : null">
@@ -68,6 +70,7 @@ export class WorksRule {
   readonly steps = input.required<readonly WorkStep[]>();
 
   private readonly items = viewChildren<ElementRef<HTMLElement>>('item');
+  protected readonly width = signal(0);
   private readonly url = toSignal(
     this.router.events.pipe(
       filter((event) => event instanceof NavigationEnd),
@@ -90,8 +93,9 @@ export class WorksRule {
   });
 
   constructor() {
-    // On a narrow screen the rule scrolls sideways; the step one is on stays in view.
+    // On a narrow screen the rule scrolls sideways; the step one is on stays in view, also when the screen is turned.
     afterRenderEffect(() => {
+      this.width();
       const at = this.shown().findIndex((entry) => entry.on);
       const item = this.items()[at]?.nativeElement;
       const list = item?.parentElement;

@@ -27,6 +27,6 @@ describe('columns', () => {
   });
 
   it('carry the unit in the header', () => {
-    expect(headerText({ label: 'Bad rate', unit: '%' })).toBe('Bad rate (%)');
+    expect(headerText({ label: 'Loan term', unit: 'months' })).toBe('Loan term (months)');
   });
 });

@@ -8,7 +8,7 @@ export type ColumnKind = 'text' | 'count' | 'metric' | 'woe' | 'points' | 'share
 export interface Column<Row> {
   readonly key: string;
   readonly label: string;
-  /** Stands under the label: "%", "points", "months". */
+  /** Stands under the label: "points", "months". A share says "%" itself, and is a share of 1 in CSV. */
   readonly unit?: string;
   readonly kind?: ColumnKind;
   /** Decimals for `number` (significant digits when left out) and `share`. */
@@ -52,7 +52,7 @@ export function cellText<Row>(column: Column<Row>, row: Row): string {
   }
 }
 
-/** "Bad rate, %" for CSV headers, so that the unit travels with the figures. */
+/** "Loan term (months)" for CSV headers, so that the unit travels with the figures. */
 export function headerText(column: { readonly label: string; readonly unit?: string }): string {
   return column.unit ? `${column.label} (${column.unit})` : column.label;
 }

@@ -93,6 +93,8 @@ export class DenseTable<Row> {
     const column = sort && this.columns().find((entry) => entry.key === sort.key);
     return sort && column ? sorted(this.rows(), column, sort.descending) : this.rows();
   });
+  /** A table of figures, each with its name in front. */
+  protected readonly figures = computed(() => this.columns().length > 1 && this.columns().slice(1).every(isNumeric));
   protected readonly windowed = computed(() => this.rows().length > windowFrom);
   protected readonly first = computed(() => (this.windowed() ? Math.max(0, Math.floor(this.top() / rowHeight) - spare) : 0));
   protected readonly shown = computed(() => {

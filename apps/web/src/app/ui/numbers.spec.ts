@@ -1,4 +1,21 @@
-import { bytes, count, duration, fixed, metric, moment, plural, points, share, signed, significant, woe } from './numbers';
+import {
+  binWords,
+  bytes,
+  count,
+  day,
+  duration,
+  fixed,
+  metric,
+  moment,
+  pValue,
+  plural,
+  points,
+  share,
+  signed,
+  significant,
+  woe,
+  written,
+} from './numbers';
 
 describe('numbers', () => {
   it('part thousands with a narrow no-break space and use the minus sign', () => {
@@ -38,6 +55,34 @@ describe('numbers', () => {
     expect(signed(-0.02, 2)).toBe('\u22120.02');
     expect(signed(0, 2)).toBe('0.00');
     expect(signed(0.00001, 2)).toBe('0.00');
+  });
+
+  it('say of a p-value below a thousandth no more than that', () => {
+    expect(pValue(0.0421)).toBe('p = 0.042');
+    expect(pValue(5.3e-8)).toBe('p < 0.001');
+    expect(pValue(0)).toBe('p < 0.001');
+    expect(pValue(null)).toBe('\u2013');
+  });
+
+  it('write numbers that come as text with all their digits, and leave other text alone', () => {
+    expect(written('-12450.50')).toBe('\u221212\u202F450.50');
+    expect(written(0.00025)).toBe('0.00025');
+    expect(written(1e21)).toBe('1e21');
+    expect(written('1e-7')).toBe('1e\u22127');
+    expect(written('35-44')).toBe('35-44');
+  });
+
+  it('write the numbers of a bin, and leave categories alone', () => {
+    expect(binWords('under -244')).toBe('under \u2212244');
+    expect(binWords('-244 to under 1250.5')).toBe('\u2212244 to under 1\u202F250.5');
+    expect(binWords('12450 and over')).toBe('12\u202F450 and over');
+    expect(binWords('over 1e-7 to 25')).toBe('over 1e\u22127 to 25');
+    for (const label of ['35-44', 'broker, web-2000', 'no bureau record', 'missing']) expect(binWords(label)).toBe(label);
+  });
+
+  it('keep a date on one line', () => {
+    expect(day('2026-11-03T12:00:00Z')).toBe('3\u00A0November\u00A02026');
+    expect(moment('2026-11-03T12:00:00Z')).toMatch(/^3\u00A0Nov\u00A02026, \d\d:00$/);
   });
 
   it('write sizes, times and counts for people', () => {

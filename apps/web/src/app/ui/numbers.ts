@@ -77,6 +77,28 @@ export function duration(seconds: Maybe): string {
   return `${Math.floor(whole / 3600)}${THIN_SPACE}h ${Math.floor((whole % 3600) / 60)}${THIN_SPACE}min`;
 }
 
+/** A p-value with its sign of relation: pValue(0.0421) = "p = 0.042"; below a thousandth the exact figure says nothing more. */
+export function pValue(value: Maybe): string {
+  if (value === null || value === undefined || Number.isNaN(value)) return DASH;
+  return value < 0.001 ? 'p < 0.001' : `p = ${significant(value, 2)}`;
+}
+
+const numeral = String.raw`-?\d+(?:\.\d+)?(?:e[+-]?\d+)?`;
+const range = new RegExp(`^(?:(?:under|up to|over) ${numeral}|${numeral} and over|(?:over )?${numeral} to (?:under )?${numeral})$`);
+
+/** A number that comes as text, its digits kept: written('-12450.50') = "−12 450.50". Any other text stays as it is. */
+export function written(value: number | string): string {
+  const text = String(value);
+  if (!new RegExp(`^${numeral}$`).test(text)) return text;
+  const [mantissa, ...exponent] = text.split('e');
+  const [whole, ...fraction] = mantissa.split('.');
+  const grouped = whole.replace(/\B(?=(\d{3})+(?!\d))/g, THIN_SPACE);
+  return [[grouped, ...fraction].join('.'), ...exponent].join('e').replace('e+', 'e').replaceAll('-', MINUS);
+}
+
+/** The label of a bin, as results state it, with its numbers as they are read: "-244 to under 1250" is "−244 to under 1 250". A category stays. */
+export const binWords = (label: string): string => (range.test(label) ? label.replace(new RegExp(numeral, 'g'), written) : label);
+
 const dateFormat = new Intl.DateTimeFormat('en-GB', { day: 'numeric', month: 'long', year: 'numeric' });
 const momentFormat = new Intl.DateTimeFormat('en-GB', {
   day: 'numeric',
@@ -86,14 +108,17 @@ const momentFormat = new Intl.DateTimeFormat('en-GB', {
   minute: '2-digit',
 });
 
+/** A date stays on one line: its blanks do not break. */
+const unbroken = (text: string): string => text.replaceAll(' ', '\u00A0');
+
 /** "3 November 2026"; the day in this browser's time zone. */
 export function day(iso: string | null | undefined): string {
-  return iso ? dateFormat.format(new Date(iso)) : DASH;
+  return iso ? unbroken(dateFormat.format(new Date(iso))) : DASH;
 }
 
 /** "3 Nov 2026, 14:05"; the time in this browser's time zone. */
 export function moment(iso: string | null | undefined): string {
-  return iso ? momentFormat.format(new Date(iso)) : DASH;
+  return iso ? momentFormat.format(new Date(iso)).split(', ').map(unbroken).join(', ') : DASH;
 }
 
 /** "1 characteristic", "8 characteristics". */

@@ -21,7 +21,7 @@ import { HEADING_LEVEL } from './heading-level';
         <p class="finding" aria-live="polite">{{ sentence }}</p>
       }
     </div>
-    <div class="actions"><ng-content /></div>
+    <div class="ts-actions ts-actions-end"><ng-content /></div>
   `,
   styles: `
     :host {
@@ -39,12 +39,7 @@ import { HEADING_LEVEL } from './heading-level';
       color: var(--ts-ink-2);
       margin-top: 4px;
     }
-    .actions {
-      display: flex;
-      flex-wrap: wrap;
-      gap: 10px;
-    }
-    .actions:empty {
+    .ts-actions:empty {
       display: none;
     }
   `,

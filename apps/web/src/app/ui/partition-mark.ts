@@ -6,7 +6,7 @@ export const partitions: readonly Partition[] = ['development', 'holdOut', 'outO
 const names: Readonly<Record<Partition, string>> = {
   development: 'Development',
   holdOut: 'Hold-out',
-  outOfTime: 'Out of time',
+  outOfTime: 'Out-of-time',
 };
 
 /** The partition's name as people read it. */
@@ -14,7 +14,7 @@ export const partitionName = (partition: Partition): string => names[partition];
 
 /**
  * Paths of the partition's mark about the origin, size given as half its height: a bar for development, a circle for hold-out, a diamond
- * for out of time. Charts draw them with the classes ts-mark and ts-mark-<partition> (styled globally through partition-mark.scss).
+ * for out-of-time. Charts draw them with the classes ts-mark and ts-mark-<partition> (styled globally through partition-mark.scss).
  *
  * @example <svg:path [attr.d]="partitionPath('holdOut', 5)" class="ts-mark ts-mark-holdOut" [attr.transform]="…" />
  */

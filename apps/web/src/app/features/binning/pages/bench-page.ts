@@ -36,7 +36,7 @@ import { Shortcuts } from '../../../core/shortcuts';
 import { Task } from '../../../core/task';
 import { warnBeforeUnload } from '../../../core/unsaved-changes';
 import { DecisionNotice } from '../../../ui/decision-notice';
-import { metric, moment, plural, woe } from '../../../ui/numbers';
+import { binWords, metric, moment, plural, woe } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { currentBins } from '../bench/history';
@@ -167,7 +167,8 @@ export class BenchPage {
   });
   protected readonly selectedLabel = computed(() => {
     const bin = this.bin();
-    return bin === null ? null : (this.coarse()[bin]?.label ?? null);
+    const label = bin === null ? null : this.coarse()[bin]?.label;
+    return label == null ? null : binWords(label);
   });
   protected readonly cutValue = computed(() => {
     const bins = this.bench.bins();

@@ -11,8 +11,8 @@ export function benchFinding(fine: FineClasses, reading: BenchReading, warnings:
   const outOfTime = has('reversed-out-of-time');
   const seen = [reading.totals.holdOut?.informationValue, fine.outOfTime ? reading.totals.outOfTime?.informationValue : null];
   if (holdOut || outOfTime)
-    parts.push(`the order is reversed ${[holdOut && 'in hold-out', outOfTime && 'out of time'].filter(Boolean).join(' and ')}`);
-  else if (seen[0] != null) parts.push(`and holds in hold-out${seen[1] != null ? ' and out of time' : ''}`);
+    parts.push(`the order is reversed ${[holdOut && 'in hold-out', outOfTime && 'out-of-time'].filter(Boolean).join(' and ')}`);
+  else if (seen[0] != null) parts.push(`and holds in hold-out${seen[1] != null ? ' and out-of-time' : ''}`);
   const small = has('small-bin');
   if (small)
     parts.push(

@@ -197,11 +197,11 @@ describe('the binning figure', () => {
     ]);
   });
 
-  it('has a point for every mark of every partition, and none out of time while it is covered', async () => {
+  it('has a point for every mark of every partition, and none of out-of-time while it is covered', async () => {
     const { root } = await setUp();
     const labels = [...root.querySelectorAll('.ts-point')].map((point) => point.getAttribute('aria-label'));
     expect(labels.filter((label) => label?.startsWith('Development'))).toHaveLength(5);
     expect(labels.filter((label) => label?.startsWith('Hold-out'))).toHaveLength(5);
-    expect(labels.some((label) => label?.startsWith('Out of time'))).toBe(false);
+    expect(labels.some((label) => label?.startsWith('Out-of-time'))).toBe(false);
   });
 });

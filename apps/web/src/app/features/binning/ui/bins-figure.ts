@@ -26,7 +26,7 @@ import { AxisDirective } from '../../../ui/axis';
 import type { Column } from '../../../ui/column';
 import { ElementWidth } from '../../../ui/element-width';
 import { FigureFrame, FigurePoint } from '../../../ui/figure-frame';
-import { count, share, woe } from '../../../ui/numbers';
+import { binWords, count, share, woe, written } from '../../../ui/numbers';
 import { partitionName, partitionPath } from '../../../ui/partition-mark';
 import { BinsTable } from './bins-table';
 import { type AxisMode, type DrawnCut, categoryOrder, ladderScale, layOut, notchedLine, shownLabels, sizes } from './geometry';
@@ -94,6 +94,7 @@ export class BinsFigure {
 
   protected readonly sizes = sizes;
   protected readonly count = count;
+  protected readonly written = written;
   protected readonly geometry = computed(() => layOut(this.fine(), this.bins(), this.reading(), this.wide(), this.mode()));
   protected readonly axisY = computed(() => this.geometry().baseline + sizes.bads + sizes.gap);
   protected readonly ladderTop = computed(() => this.axisY() + sizes.axis + sizes.ladderGap);
@@ -177,7 +178,7 @@ export class BinsFigure {
     const rows: TableRow[] = reading.bins.flatMap(({ label }, bin) => names.map((partition) => ({ bin, label, partition })));
     const figures = ({ bin, partition }: TableRow) => reading.bins[bin].figures[partition];
     const columns: Column<TableRow>[] = [
-      { key: 'bin', label: 'Bin', value: (row) => row.label },
+      { key: 'bin', label: 'Bin', value: (row) => row.label, format: (row) => binWords(row.label) },
       { key: 'partition', label: 'Partition', value: (row) => partitionName(row.partition) },
       { key: 'rows', label: 'Rows', kind: 'count', value: (row) => figures(row)?.rows },
       { key: 'goods', label: 'Goods', kind: 'number', decimals: 0, value: (row) => figures(row)?.goods },
@@ -200,7 +201,7 @@ export class BinsFigure {
   protected cutWords({ cut, edge }: DrawnCut): string {
     const { bins, informationValue } = this.reading();
     const rate = (bin: number): string => share(bins[bin]?.figures.development?.badRate);
-    return `${edge}; bad rate ${rate(cut)} below, ${rate(cut + 1)} from there on; IV ${woe(informationValue)}`;
+    return `${written(edge)}; bad rate ${rate(cut)} below, ${rate(cut + 1)} from there on; IV ${woe(informationValue)}`;
   }
 
   protected reach(cut: number): { min: number; max: number } {

@@ -34,7 +34,7 @@ const warningWords: Record<CharacteristicSummary['warnings'][number]['code'], st
   'zero-cell': 'zero cell',
   'not-monotone': 'not monotone',
   'reversed-in-hold-out': 'reversed in hold-out',
-  'reversed-out-of-time': 'reversed out of time',
+  'reversed-out-of-time': 'reversed in out-of-time',
   'high-information-value': 'check for leakage',
   'one-bin': 'one bin',
 };

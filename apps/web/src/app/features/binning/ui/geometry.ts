@@ -1,5 +1,6 @@
 import { classCount, coarseCount, riskOrder, type BenchReading, type Bins, type FineClasses } from '@tallystone/numeric/bench';
 import { scaleLinear, type ScaleLinear } from 'd3-scale';
+import { binWords } from '../../../ui/numbers';
 
 /** Where everything of the binning figure stands, in pixels: pure, so that it can be tested without drawing. */
 
@@ -228,7 +229,7 @@ function columnsOf(
     if (bins.kind === 'numeric')
       x1 = bin === coarse - 1 ? axis[1] : (bounds?.[fine.edges.indexOf(bins.edges[bin]) + 1] ?? axis[1]);
     else x1 = x + bins.groups[bin].filter((category) => order !== null && fine.categories.includes(category)).length * step;
-    columns.push({ bin, label: reading.bins[bin].label, x0: x, x1 });
+    columns.push({ bin, label: binWords(reading.bins[bin].label), x0: x, x1 });
     x = x1;
   }
   const classes = classCount(fine);

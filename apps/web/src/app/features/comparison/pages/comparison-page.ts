@@ -57,31 +57,32 @@ export class ComparisonPage {
     return value ? comparisonFinding(value) : null;
   });
 
+  /** In the order of choosing, as the columns stand: the first is the one that the others are held against. */
+  protected readonly pickedWords = computed(() => {
+    const available = new Map(this.available().map((fit) => [fit.id, `${fit.number}. ${fit.name}`]));
+    return this.ids()
+      .map((id) => available.get(id))
+      .filter(Boolean)
+      .join('; ');
+  });
+
   protected readonly measures = computed(() => {
     const value = this.value();
     if (!value) return [];
     const covered = value.outOfTimeState === 'covered';
     const parts: Partition[] = value.outOfTimeState === 'none' ? ['development', 'holdOut'] : ['development', 'holdOut', 'outOfTime'];
-    const row = (label: string, partition: Partition, text: (fit: ComparedFit) => string) => ({
-      label,
-      partition,
-      cells: value.fits.map(text),
-    });
-    return parts.flatMap((partition) => {
-      const hidden = partition === 'outOfTime' && covered;
-      return [
-        row('AUC', partition, (fit) => aucText(fit[partition], hidden)),
-        ...(hidden
-          ? []
-          : [
-              row('difference in AUC', partition, (fit) =>
-                testText(value.tests.find((test) => test.partition === partition && test.fitId === fit.id)),
-              ),
-              row('KS', partition, (fit) => metric(fit[partition]?.ks)),
-              row('calibration slope', partition, (fit) => fixed(fit[partition]?.calibrationSlope, 2)),
-              row('calibration in the large', partition, (fit) => fixed(fit[partition]?.calibrationInTheLarge, 3)),
-            ]),
+    const row = (label: string, text: (fit: ComparedFit) => string) => ({ label, cells: value.fits.map(text) });
+    return parts.map((partition) => {
+      if (partition === 'outOfTime' && covered) return { partition, covered, rows: [] };
+      const test = (fit: ComparedFit) => value.tests.find((entry) => entry.partition === partition && entry.fitId === fit.id);
+      const rows = [
+        row('AUC', (fit) => aucText(fit[partition])),
+        row('Difference in AUC', (fit) => testText(test(fit))),
+        row('KS', (fit) => metric(fit[partition]?.ks)),
+        row('Calibration slope', (fit) => fixed(fit[partition]?.calibrationSlope, 2)),
+        row('Calibration in the large', (fit) => fixed(fit[partition]?.calibrationInTheLarge, 3)),
       ];
+      return { partition, covered: false, rows };
     });
   });
 

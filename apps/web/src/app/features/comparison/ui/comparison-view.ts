@@ -1,5 +1,5 @@
 import type { ComparedCharacteristic, ComparedMetrics, Comparison, PairedTest } from '@tallystone/contracts/comparison/schema';
-import { DASH, fixed, metric, plural, signed, significant } from '../../../ui/numbers';
+import { DASH, fixed, metric, pValue, plural, signed } from '../../../ui/numbers';
 
 /**
  * The sentence of the page, the first rule that holds: coefficients that change sign; a hold-out difference that chance hardly explains
@@ -15,7 +15,7 @@ export function comparisonFinding(comparison: Comparison): string {
   const name = (id: string): string => comparison.fits.find((fit) => fit.id === id)?.name ?? id;
   if (clear.length > 0) {
     const largest = [...clear].sort((a, b) => Math.abs(b.difference) - Math.abs(a.difference))[0];
-    return `On hold-out ${name(largest.fitId)} ${largest.difference > 0 ? 'separates better' : 'separates worse'} than ${comparison.fits[0].name} by ${fixed(Math.abs(largest.difference), 4)} of AUC (p ${significant(largest.pValue, 2)}).`;
+    return `On hold-out ${name(largest.fitId)} ${largest.difference > 0 ? 'separates better' : 'separates worse'} than ${comparison.fits[0].name} by ${fixed(Math.abs(largest.difference), 4)} of AUC (${pValue(largest.pValue)}).`;
   }
   const values = comparison.fits.map((fit) => fit.holdOut?.auc).filter((value) => value !== undefined);
   if (values.length < 2) return `${plural(comparison.fits.length, 'fit')} side by side.`;
@@ -23,16 +23,16 @@ export function comparisonFinding(comparison: Comparison): string {
 }
 
 /** "0.781 (0.770 to 0.792)". */
-export function aucText(at: ComparedMetrics | null, covered: boolean): string {
-  if (!at) return covered ? 'covered' : DASH;
+export function aucText(at: ComparedMetrics | null): string {
+  if (!at) return DASH;
   return at.aucLower === null ? metric(at.auc) : `${metric(at.auc)} (${metric(at.aucLower)} to ${metric(at.aucUpper)})`;
 }
 
-/** "+0.0031, p 0.04"; on rows that both were developed on there is no p-value, and the text says why. */
+/** "+0.0031, p = 0.04"; on rows that both were developed on there is no p-value, and the text says why. */
 export function testText(test: PairedTest | undefined): string {
   if (!test) return DASH;
   if (test.partition === 'development') return signed(test.difference, 4);
-  return test.pValue === null ? `${signed(test.difference, 4)}, no test` : `${signed(test.difference, 4)}, p ${significant(test.pValue, 2)}`;
+  return test.pValue === null ? `${signed(test.difference, 4)}, no test` : `${signed(test.difference, 4)}, ${pValue(test.pValue)}`;
 }
 
 /** Out: not part of the fit. Zero: shrunk to exactly zero. */

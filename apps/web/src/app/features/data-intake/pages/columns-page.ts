@@ -54,17 +54,16 @@ interface Row {
         [open]="['reading', 'columns', 'definition']"
       />
       <ts-page-header title="Columns" [finding]="columns.value()?.finding ?? null">
+        @if (draft.saveState() !== 'stale') {
+          <ts-save-state [state]="draft.saveState()" [savedAt]="draft.savedAt()" [savedBy]="draft.savedBy()" />
+        }
         <a matButton="filled" [routerLink]="['/models', modelId(), 'sample', sampleId(), 'definition']">Outcome and partition</a>
       </ts-page-header>
       <ts-problems [error]="columns.error()" />
       <ts-problems [error]="draft.error()" />
-      <ts-save-state
-        [state]="draft.saveState()"
-        [savedAt]="draft.savedAt()"
-        [savedBy]="draft.savedBy()"
-        (theirs)="draft.reload()"
-        (mine)="draft.keepMine()"
-      />
+      @if (draft.saveState() === 'stale') {
+        <ts-save-state [state]="draft.saveState()" (theirs)="draft.reload()" (mine)="draft.keepMine()" />
+      }
       <div class="ts-split">
         <ts-table
           caption="Columns of the sample"
@@ -111,8 +110,9 @@ interface Row {
       color: var(--ts-primary);
       background: none;
       border: 0;
+      // 24 px to hit, without moving the words
       padding: 2px 0;
-      min-height: 24px;
+      margin: -2px 0;
       cursor: pointer;
       text-align: left;
       text-decoration: underline;
@@ -170,7 +170,6 @@ export class ColumnsPage {
     {
       key: 'missing',
       label: 'Missing',
-      unit: '%',
       kind: 'share',
       value: (row) => row.profile.missing / Math.max(1, row.profile.rows),
       sortable: true,

@@ -16,6 +16,7 @@ import { type Preview, type ReadingChoices, Samples, oneSample } from '../data/s
 import { readingFinding } from '../ui/findings';
 import { PreviewTable } from '../ui/preview-table';
 import { ReadingForm } from '../ui/reading-form';
+import { signWords } from '../ui/sign-words';
 import { SampleSteps } from '../ui/sample-steps';
 
 /** How the file is read: proposed with reasons, shown on its first rows with every doubt, confirmed by a person. */
@@ -61,23 +62,20 @@ import { SampleSteps } from '../ui/sample-steps';
         }
         <ts-preview-table [preview]="view" />
       } @else if (!mayRead() && sample.hasValue()) {
-        <p class="ts-second">
-          The file was read with the choices below; a confirmed definition rests on them, or reading is for the modellers of this
-          model.
-        </p>
+        <p class="ts-second">{{ settledWords() }}</p>
       } @else if (looking.busy()) {
         <p class="ts-second" role="status">Looking at the file</p>
       }
       @if (!mayRead() && sample.value()?.reading; as reading) {
         <dl class="ts-pairs">
           <dt>Delimiter</dt>
-          <dd>{{ reading.delimiter === '	' ? 'tab' : reading.delimiter }}</dd>
+          <dd>{{ signWords(reading.delimiter) }}</dd>
           <dt>Encoding</dt>
-          <dd>{{ reading.encoding }}</dd>
+          <dd>{{ reading.encoding.toUpperCase() }}</dd>
           <dt>Decimal sign</dt>
-          <dd>{{ reading.decimal }}</dd>
+          <dd>{{ signWords(reading.decimal) }}</dd>
           <dt>Thousands sign</dt>
-          <dd>{{ reading.thousands ?? 'none' }}</dd>
+          <dd>{{ signWords(reading.thousands) }}</dd>
           <dt>Missing</dt>
           <dd>{{ missingWords() }}</dd>
         </dl>
@@ -129,6 +127,12 @@ export class ReadingPage {
     const problems = shown.length > 0 ? shown : last;
     return problems.length === 0 ? null : new Problem(422, 'file', 'The file cannot be read like this', '', problems);
   });
+  protected readonly signWords = signWords;
+  protected readonly settledWords = computed(() =>
+    this.sample.hasValue() && this.sample.value().definitions > 0
+      ? 'The file was read with these choices, and they stay: a confirmed definition rests on them.'
+      : 'How the file is read is for the modellers of this model to say.',
+  );
   protected readonly missingWords = computed(() => {
     const missing = this.sample.hasValue() ? (this.sample.value().reading?.missing ?? []) : [];
     return missing.map((token) => (token === '' ? 'empty' : token)).join(', ');

@@ -26,51 +26,60 @@ const margin = { left: 8, right: 8, bottom: 26, top: 8 };
   changeDetection: ChangeDetectionStrategy.OnPush,
   imports: [AxisDirective, ElementWidth, FigureFrame, FigurePoint],
   template: `
-    <ts-figure [title]="profile().column" [note]="note()" [finding]="finding()" [table]="table()">
-      <div (tsWidth)="width.set($event)">
-        @if (isText()) {
-          <svg [attr.viewBox]="'0 0 ' + width() + ' ' + textHeight()" [attr.width]="width()" [attr.height]="textHeight()">
-            @for (bar of bars(); track bar.label; let index = $index) {
-              <svg:rect
-                [tsPoint]="words(bar)"
-                tsPointSeries="values"
-                class="bar"
-                [attr.x]="0"
-                [attr.y]="index * 26 + 18"
-                [attr.width]="texts()(bar.count)"
-                height="6"
-              />
-              <svg:text x="0" [attr.y]="index * 26 + 13" class="ts-label">{{ short(bar.label) }}</svg:text>
-              <svg:text [attr.x]="width()" [attr.y]="index * 26 + 13" text-anchor="end">{{ part(bar.count) }}</svg:text>
-            }
-          </svg>
-        } @else {
-          <svg [attr.viewBox]="'0 0 ' + width() + ' ' + height" [attr.width]="width()" [attr.height]="height">
-            @for (box of boxes(); track box.bar.label) {
-              <svg:rect
-                [tsPoint]="words(box.bar)"
-                tsPointSeries="values"
-                class="bar"
-                [attr.x]="box.x"
-                [attr.y]="box.y"
-                [attr.width]="box.width"
-                [attr.height]="box.height"
-              />
-            }
-            @if (profile().numeric) {
-              <svg:g [tsAxis]="axis()" [attr.transform]="'translate(0,' + (height - margin.bottom) + ')'" />
-            } @else if (bars().length > 0) {
-              <svg:text [attr.x]="margin.left" [attr.y]="height - 6">{{ bars()[0].label }}</svg:text>
-              <svg:text [attr.x]="width() - margin.right" [attr.y]="height - 6" text-anchor="end">
-                {{ bars()[bars().length - 1].label }}
-              </svg:text>
-            }
-          </svg>
-        }
-      </div>
-    </ts-figure>
+    @if (bars().length === 0) {
+      <h3>{{ profile().column }} <span class="ts-caption">{{ note() }}</span></h3>
+      <p class="ts-second">{{ finding() }}</p>
+    } @else {
+      <ts-figure [title]="profile().column" [note]="note()" [finding]="finding()" [table]="table()">
+        <div (tsWidth)="width.set($event)">
+          @if (isText()) {
+            <svg [attr.viewBox]="'0 0 ' + width() + ' ' + textHeight()" [attr.width]="width()" [attr.height]="textHeight()">
+              @for (bar of bars(); track bar.label; let index = $index) {
+                <svg:rect
+                  [tsPoint]="words(bar)"
+                  tsPointSeries="values"
+                  class="bar"
+                  [attr.x]="0"
+                  [attr.y]="index * 26 + 18"
+                  [attr.width]="texts()(bar.count)"
+                  height="6"
+                />
+                <svg:text x="0" [attr.y]="index * 26 + 13" class="ts-label">{{ short(bar.label) }}</svg:text>
+                <svg:text [attr.x]="width()" [attr.y]="index * 26 + 13" text-anchor="end">{{ part(bar.count) }}</svg:text>
+              }
+            </svg>
+          } @else {
+            <svg [attr.viewBox]="'0 0 ' + width() + ' ' + height" [attr.width]="width()" [attr.height]="height">
+              @for (box of boxes(); track box.bar.label) {
+                <svg:rect
+                  [tsPoint]="words(box.bar)"
+                  tsPointSeries="values"
+                  class="bar"
+                  [attr.x]="box.x"
+                  [attr.y]="box.y"
+                  [attr.width]="box.width"
+                  [attr.height]="box.height"
+                />
+              }
+              @if (profile().numeric) {
+                <svg:g [tsAxis]="axis()" [attr.transform]="'translate(0,' + (height - margin.bottom) + ')'" />
+              } @else if (bars().length > 0) {
+                <svg:text [attr.x]="margin.left" [attr.y]="height - 6">{{ bars()[0].label }}</svg:text>
+                <svg:text [attr.x]="width() - margin.right" [attr.y]="height - 6" text-anchor="end">
+                  {{ bars()[bars().length - 1].label }}
+                </svg:text>
+              }
+            </svg>
+          }
+        </div>
+      </ts-figure>
+    }
   `,
   styles: `
+    h3 .ts-caption {
+      font-weight: 400;
+      margin-left: 12px;
+    }
     .bar {
       fill: var(--ts-primary);
     }
@@ -148,7 +157,7 @@ export class ColumnFigure {
     const columns: readonly Column<Bar>[] = [
       { key: 'value', label: 'Value', value: (row) => row.label },
       { key: 'rows', label: 'Rows', kind: 'count', value: (row) => row.count },
-      { key: 'share', label: 'Share', unit: '%', kind: 'share', value: (row) => row.count / Math.max(1, this.profile().rows) },
+      { key: 'share', label: 'Share', kind: 'share', value: (row) => row.count / Math.max(1, this.profile().rows) },
     ];
     return { columns, rows: this.bars() };
   });

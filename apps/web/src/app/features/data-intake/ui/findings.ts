@@ -2,7 +2,7 @@ import type { ColumnList, ColumnProfile } from '@tallystone/contracts/samples/co
 import type { DefinitionCounts, WaterfallStep } from '@tallystone/contracts/samples/definition';
 import type { Preview } from '@tallystone/contracts/samples/reading';
 import type { SampleList } from '@tallystone/contracts/samples/schema';
-import { count, plural, share, significant } from '../../../ui/numbers';
+import { count, plural, share, significant, written } from '../../../ui/numbers';
 
 /** One sentence for the top of each page, by rules; where none fires, the counts. */
 export function samplesFinding({ samples, uploads }: SampleList): string {
@@ -47,14 +47,15 @@ export function rangeOf(profile: ColumnProfile): string {
     const write = plain;
     return `${write(numeric.smallest)} to ${write(numeric.largest)}`;
   }
-  if (date) return `${date.first} to ${date.last}`;
+  // U+2011: a day does not break in the middle.
+  if (date) return `${date.first} to ${date.last}`.replaceAll('-', '\u2011');
   return '';
 }
 
 export function mostFrequentOf(profile: ColumnProfile): string {
   const [first] = profile.mostFrequent;
   if (profile.hashed) return 'kept as hashes';
-  return first ? `${first.value} (${share(first.count / Math.max(1, profile.rows - profile.missing), 0)})` : '';
+  return first ? `${profile.kind === 'numeric' ? written(first.value) : first.value} (${share(first.count / Math.max(1, profile.rows - profile.missing), 0)})` : '';
 }
 
 /** Columns that nobody has looked at and that deserve it, for the notice on top. */

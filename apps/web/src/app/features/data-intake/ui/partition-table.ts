@@ -44,6 +44,6 @@ export class PartitionTable {
     { key: 'goods', label: 'Goods', kind: 'count', value: (row) => row.goods },
     { key: 'bads', label: 'Bads', kind: 'count', value: (row) => row.bads },
     { key: 'indeterminates', label: 'Indeterminates', kind: 'count', value: (row) => row.indeterminates },
-    { key: 'badRate', label: 'Bad rate', unit: '%', kind: 'share', value: (row) => row.badRate },
+    { key: 'badRate', label: 'Bad rate', kind: 'share', value: (row) => row.badRate },
   ];
 }

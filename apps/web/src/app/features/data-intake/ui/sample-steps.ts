@@ -10,19 +10,20 @@ import { RouterLink, RouterLinkActive } from '@angular/router';
     <nav aria-label="Sample">
       <a [routerLink]="['/models', modelId(), 'sample']" class="back">All samples</a>
       <span class="file" [title]="fileName()">{{ fileName() }}</span>
-      @for (step of steps; track step.path) {
-        @if (open().includes(step.path)) {
-          <a
-            [routerLink]="['/models', modelId(), 'sample', sampleId(), step.path]"
-            routerLinkActive="here"
-            ariaCurrentWhenActive="page"
-          >
-            {{ step.label }}
-          </a>
-        } @else {
-          <span class="ahead">{{ step.label }}</span>
+      <div class="pages">
+        @for (step of steps; track step.path) {
+          @if (open().includes(step.path)) {
+            <a
+              [routerLink]="['/models', modelId(), 'sample', sampleId(), step.path]"
+              routerLinkActive="here"
+              ariaCurrentWhenActive="page"
+              >{{ step.label }}</a
+            >
+          } @else {
+            <span class="ahead">{{ step.label }}</span>
+          }
         }
-      }
+      </div>
     </nav>
   `,
   styles: `
@@ -31,10 +32,16 @@ import { RouterLink, RouterLinkActive } from '@angular/router';
       flex-wrap: wrap;
       gap: 4px 20px;
       align-items: baseline;
+      justify-content: space-between;
       border-bottom: 1px solid var(--ts-hairline);
+    }
+    .pages {
+      display: flex;
+      gap: 20px;
     }
     a,
     span {
+      display: block;
       padding: 6px 0;
       min-height: 24px;
     }

@@ -7,7 +7,6 @@ import { FigureFrame, FigurePoint } from '../../../ui/figure-frame';
 import { MINUS, count, plural, share } from '../../../ui/numbers';
 import { badRateOut, waterfallFinding } from './findings';
 
-const row = 44;
 
 /** From the rows of the file down to development: what each step takes out, and what is left. */
 @Component({
@@ -20,19 +19,21 @@ const row = 44;
         <svg [attr.viewBox]="'0 0 ' + width() + ' ' + height()" [attr.width]="width()" [attr.height]="height()">
           @for (bar of bars(); track bar.index) {
             <svg:text x="0" [attr.y]="bar.y + 13" class="ts-label">{{ bar.step.label }}</svg:text>
-            <svg:text [attr.x]="width()" [attr.y]="bar.y + 13" text-anchor="end">{{ bar.words }}</svg:text>
+            <svg:text [attr.x]="narrow() ? 0 : width()" [attr.y]="bar.y + (narrow() ? 31 : 13)" [attr.text-anchor]="narrow() ? 'start' : 'end'">
+              {{ bar.words }}
+            </svg:text>
             <svg:rect
               [tsPoint]="bar.read"
               tsPointSeries="steps"
               class="left"
               x="0"
-              [attr.y]="bar.y + 19"
+              [attr.y]="bar.y + bar.under"
               [attr.width]="bar.left"
               height="12"
             />
             @if (bar.step.out > 0) {
-              <svg:rect class="out" [attr.x]="bar.left" [attr.y]="bar.y + 19.75" [attr.width]="bar.out" height="10.5" />
-              <svg:path class="notch" [attr.d]="'M' + bar.left + ' ' + (bar.y + 17) + 'v16'" />
+              <svg:rect class="out" [attr.x]="bar.left" [attr.y]="bar.y + bar.under + 0.75" [attr.width]="bar.out" height="10.5" />
+              <svg:path class="notch" [attr.d]="'M' + bar.left + ' ' + (bar.y + bar.under - 2) + 'v16'" />
             }
           }
         </svg>
@@ -58,7 +59,10 @@ const row = 44;
 export class WaterfallFigure {
   readonly counts = input.required<DefinitionCounts>();
   protected readonly width = signal(640);
-  protected readonly height = computed(() => this.counts().waterfall.length * row + 4);
+  /** Where label and numbers would meet, the numbers stand under the label. */
+  protected readonly narrow = computed(() => this.width() < 520);
+  private readonly row = computed(() => (this.narrow() ? 62 : 44));
+  protected readonly height = computed(() => this.counts().waterfall.length * this.row() + 4);
   protected readonly finding = computed(() => waterfallFinding(this.counts()));
 
   protected readonly bars = computed(() => {
@@ -78,7 +82,8 @@ export class WaterfallFigure {
       return {
         index,
         step,
-        y: index * row + 2,
+        y: index * this.row() + 2,
+        under: this.narrow() ? 37 : 19,
         left: x(step.left),
         out: Math.max(0, x(step.out)),
         words,
@@ -93,7 +98,7 @@ export class WaterfallFigure {
       { key: 'out', label: 'Rows out', kind: 'count', value: (step) => step.out },
       { key: 'goods', label: 'Goods out', kind: 'count', value: (step) => step.outGoods },
       { key: 'bads', label: 'Bads out', kind: 'count', value: (step) => step.outBads },
-      { key: 'rate', label: 'Bad rate', unit: '%', kind: 'share', value: badRateOut },
+      { key: 'rate', label: 'Bad rate', kind: 'share', value: badRateOut },
       { key: 'left', label: 'Rows left', kind: 'count', value: (step) => step.left },
     ];
     return { columns, rows: this.counts().waterfall };

@@ -22,7 +22,7 @@ const document = (number: number, change: Partial<DocumentSummary> = {}): Docume
 describe('documents', () => {
   it('are told by the latest edition', () => {
     expect(versionDocumentsFinding([])).toContain('No document yet');
-    expect(versionDocumentsFinding([document(1), document(2)])).toMatch(/^Edition 2, 27 pages, made 2 Nov 2026, .* by Conrad, is the latest\.$/);
+    expect(versionDocumentsFinding([document(1), document(2)])).toMatch(/^Edition 2, 27 pages, made 2\u00A0Nov\u00A02026, .* by Conrad, is the latest\.$/);
   });
   it('are counted across models', () => {
     expect(documentsFinding([])).toBeNull();

@@ -43,11 +43,12 @@ const ruleNames = {
   templateUrl: './fit-page.html',
   styles: `
     .decision,
-    .chosen {
-      margin-top: 20px;
+    .chosen,
+    .act {
+      margin-top: 16px;
     }
     .act {
-      margin-top: 20px;
+      margin-bottom: 24px;
     }
   `,
 })

@@ -7,7 +7,8 @@ import { entryOrder, scorecardAt } from './path-view';
 
 /**
  * What the scorecard is at the penalty under the notch: how many are kept, discrimination and calibration by partition, and every
- * characteristic with its coefficient and the range of its points. Changes with the notch, asks nothing of the server.
+ * characteristic with its coefficient and the range of its points. Changes with the notch, asks nothing of the server. What is projected into
+ * it, the choice, stands before the characteristics.
  */
 @Component({
   selector: 'ts-at-penalty',
@@ -53,7 +54,7 @@ export class AtPenalty {
     const path = this.path();
     const i = this.index();
     const explained = 1 - path.deviance[i] / path.nullDeviance;
-    return `penalty ${significant(path.lambdas[i], 3)}, deviance explained ${share(explained)}, optimality residual ${significant(path.optimalityResidual[i], 1)}`;
+    return `penalty ${significant(path.lambdas[i], 2)}, deviance explained ${share(explained)}, optimality residual ${significant(path.optimalityResidual[i], 1)}`;
   });
   protected readonly characteristics = computed(() => {
     const rows = scorecardAt(this.path(), this.index());

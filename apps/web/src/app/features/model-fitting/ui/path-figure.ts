@@ -16,9 +16,10 @@ import { extent } from 'd3-array';
 import { scaleLinear, scaleLog } from 'd3-scale';
 import { area, line } from 'd3-shape';
 import { fixed, plural, significant } from '../../../ui/numbers';
-import { entryOrder, nearestIndex, notchLabel, ruleAt } from './path-view';
+import { entryOrder, nearestIndex, notchLabel, placeBeside, ruleAt } from './path-view';
 
 const rowHeight = 18;
+const perLetter = 6.7; // mean width of a letter of 13 px, in pixels
 const levels = 4; // strengths of a tally stroke: enough to see growth, few enough paths to draw at once
 
 /**
@@ -46,7 +47,8 @@ export class PathFigure {
 
   protected readonly narrow = computed(() => this.width() < 560);
   protected readonly layout = computed(() => {
-    const left = this.narrow() ? 118 : 150;
+    const longest = Math.max(...this.path().characteristics.map(({ label }) => label.length));
+    const left = Math.min(this.narrow() ? 136 : 190, Math.max(136, longest * perLetter + 18));
     const right = this.width() - 12;
     const deviance = { top: 34, bottom: this.narrow() ? 130 : 150 };
     const coefficients = { top: deviance.bottom + 30, bottom: deviance.bottom + (this.narrow() ? 190 : 240) };
@@ -136,7 +138,7 @@ export class PathFigure {
     const path = this.path();
     const { lambdas, coefficients, characteristics } = path;
     const x = this.x();
-    const reach = this.narrow() ? 15 : 19;
+    const reach = Math.floor((this.layout().left - 12) / perLetter);
     // Strokes closer than 4 px would run together: then only every second, third … penalty gets one.
     const apart = Math.max(1, Math.ceil((4 * lambdas.length) / (this.layout().right - this.layout().left)));
     return entryOrder(path).map((j, place) => {
@@ -182,8 +184,7 @@ export class PathFigure {
       .filter((mark, k) => mark.at !== here && !(k === 1 && minimum === oneStandardError))
       .map((mark) => {
         const x = this.x()(path.lambdas[mark.at]);
-        const flip = x + mark.text.length * 7 > this.layout().right;
-        return { ...mark, x, anchor: flip ? 'end' : 'start', textX: flip ? x - 6 : x + 6, textY: 32 + mark.line * 16 };
+        return { ...mark, x, label: placeBeside(x, mark.text.length * perLetter, this.layout(), this.notchX()), textY: 32 + mark.line * 16 };
       });
   });
   protected readonly spoken = computed(() => {

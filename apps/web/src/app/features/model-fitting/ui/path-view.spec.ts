@@ -1,5 +1,5 @@
 import { smallPath } from '../testing/path';
-import { decisionAt, entryOrder, nearestIndex, notchLabel, pathFinding, pathTitle, ruleAt, scorecardAt } from './path-view';
+import { decisionAt, entryOrder, nearestIndex, notchLabel, pathFinding, placeBeside, pathTitle, ruleAt, scorecardAt } from './path-view';
 
 describe('what a path shows', () => {
   it('lists characteristics in the order they enter', () => {
@@ -26,7 +26,10 @@ describe('what a path shows', () => {
 
   it('names what would enter next while the minimum is not reached', () => {
     expect(decisionAt(smallPath(), 2)).toMatch(/^income would enter at penalty 0\.010\./);
+    expect(decisionAt(smallPath(), 2)).toContain('Take it or leave it');
     expect(decisionAt(smallPath(), 4)).toBeNull();
+    const both = smallPath({ coefficients: smallPath().coefficients.map(([age, income]) => [age, income, income]) });
+    expect(decisionAt(both, 2)).toMatch(/^income, phone would enter at penalty 0\.010\. Take them or leave them/);
   });
 
   it('says when a penalty is above the one-standard-error rule', () => {
@@ -54,6 +57,15 @@ describe('what a path shows', () => {
     expect(notchLabel(smallPath(), 4)).toBe('smallest deviance: penalty 0.0050');
     expect(pathTitle(smallPath(), 1)).toBe('Lasso over 6 penalties, ten folds');
     expect(pathTitle(smallPath(), 0.5)).toContain('Elastic net (mixing 0.5');
+  });
+
+  it('places a label where the notch does not run through it', () => {
+    const edges = { left: 100, right: 400 };
+    expect(placeBeside(150, 80, edges, 120)).toEqual({ x: 156, anchor: 'start' });
+    expect(placeBeside(380, 80, edges, 120)).toEqual({ x: 374, anchor: 'end' }); // no room on the right
+    expect(placeBeside(250, 80, edges, 300)).toEqual({ x: 244, anchor: 'end' }); // the notch stands on the right
+    expect(placeBeside(350, 90, edges, 300)).toEqual({ x: 400, anchor: 'end' }); // on the left too: at the edge
+    expect(placeBeside(250, 200, edges, 250)).toBeNull();
   });
 
   it('finds the nearest penalty on the logarithmic axis', () => {

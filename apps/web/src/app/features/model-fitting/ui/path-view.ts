@@ -133,8 +133,29 @@ export function decisionAt(path: FitPath, index: number): string | null {
   if (next > 0 && next <= minimum) {
     const entering = path.characteristics.filter((_, j) => path.coefficients[index][j] === 0 && path.coefficients[next][j] !== 0);
     if (entering.length > 0) {
-      return `${entering.map((entry) => entry.label).join(', ')} would enter at penalty ${significant(path.lambdas[next], 2)}. Take it or leave it, and say why.`;
+      const it = entering.length === 1 ? 'it' : 'them';
+      return `${entering.map((entry) => entry.label).join(', ')} would enter at penalty ${significant(path.lambdas[next], 2)}. Take ${it} or leave ${it}, and say why.`;
     }
   }
   return null;
+}
+
+/**
+ * Where a text of this width (px) stands at a line at `x`: right of the line, left of it, else at an edge of the figure, wherever another
+ * line, at `other`, does not run through it; null where it finds no room.
+ */
+export function placeBeside(
+  x: number,
+  width: number,
+  { left, right }: { readonly left: number; readonly right: number },
+  other: number,
+): { readonly x: number; readonly anchor: 'start' | 'end' } | null {
+  const places = [
+    { x: x + 6, anchor: 'start', from: x + 6 },
+    { x: x - 6, anchor: 'end', from: x - 6 - width },
+    { x: right, anchor: 'end', from: right - width },
+    { x: left, anchor: 'start', from: left },
+  ] as const;
+  const place = places.find(({ from }) => from >= left && from + width <= right && (other < from - 4 || other > from + width + 4));
+  return place ? { x: place.x, anchor: place.anchor } : null;
 }

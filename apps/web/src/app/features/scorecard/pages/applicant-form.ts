@@ -8,7 +8,7 @@ import { Problem } from '../../../core/http/problem';
 import { Task } from '../../../core/task';
 import { type Column } from '../../../ui/column';
 import { DenseTable } from '../../../ui/dense-table';
-import { fixed, points, share } from '../../../ui/numbers';
+import { binWords, fixed, points, share } from '../../../ui/numbers';
 import { ProblemList } from '../../../ui/problem-list';
 import { Scorecards } from '../data/scorecards';
 
@@ -36,7 +36,7 @@ export class ApplicantForm {
   );
   protected readonly columns: readonly Column<ScoredApplicant['points'][number]>[] = [
     { key: 'label', label: 'Characteristic', value: (row) => row.label },
-    { key: 'bin', label: 'Attribute', value: (row) => row.bin },
+    { key: 'bin', label: 'Attribute', value: (row) => row.bin, format: (row) => binWords(row.bin) },
     { key: 'woe', label: 'WOE', kind: 'woe', value: (row) => row.woe },
     { key: 'points', label: 'Points', kind: 'points', value: (row) => row.pointsRounded },
   ];

@@ -138,9 +138,9 @@ export class ScorecardPage {
     return [
       { key: 'band', label: 'Band', value: bandLabel },
       ...partitions.flatMap((partition): Column<ScoreBand>[] => [
-        { key: `${partition}-rows`, label: partitionName(partition), unit: 'rows', kind: 'count', value: (band) => band[partition]?.rows },
-        { key: `${partition}-bads`, label: 'Bads', kind: 'count', value: (band) => band[partition]?.bads },
-        { key: `${partition}-rate`, label: 'Bad rate', kind: 'share', value: (band) => badRateOf(band[partition]) },
+        { key: `${partition}-rows`, label: 'Rows', unit: partitionName(partition), kind: 'count', value: (band) => band[partition]?.rows },
+        { key: `${partition}-bads`, label: 'Bads', unit: partitionName(partition), kind: 'count', value: (band) => band[partition]?.bads },
+        { key: `${partition}-rate`, label: 'Bad rate', unit: partitionName(partition), kind: 'share', value: (band) => badRateOf(band[partition]) },
       ]),
     ];
   });

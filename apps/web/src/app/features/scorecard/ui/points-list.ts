@@ -1,5 +1,5 @@
 import { ChangeDetectionStrategy, Component, computed, input } from '@angular/core';
-import { fixed, points, share, woe } from '../../../ui/numbers';
+import { binWords, fixed, points, share, woe } from '../../../ui/numbers';
 import { type PointsBlock } from './scorecard-view';
 
 /** Points by characteristic and attribute: one small table each, the bar beside the points drawn from the neutral points on one common scale. */
@@ -28,7 +28,7 @@ import { type PointsBlock } from './scorecard-view';
         <tbody>
           @for (row of block.rows; track $index) {
             <tr>
-              <th scope="row">{{ row.label }}</th>
+              <th scope="row">{{ words(row.label) }}</th>
               <td class="n second">{{ share(row.share) }}</td>
               <td class="n second">{{ woe(row.woe) }}</td>
               <td class="n strong">{{ whole(row.points) }}</td>
@@ -59,10 +59,15 @@ export class PointsList {
     return blocks.map((block) => ({
       ...block,
       neutralPath: `M${zero} 0v14`,
-      rows: block.attributes.map((attribute) => ({ ...attribute, path: `M${zero} 7H${x(attribute.points - block.neutral).toFixed(1)}` })),
+      rows: block.attributes.map((attribute) => {
+        const end = x(attribute.points - block.neutral);
+        // Shorter than the line of the neutral points is wide, a bar would only blur it.
+        return { ...attribute, path: Math.abs(end - x(0)) < 1.5 ? '' : `M${zero} 7H${end.toFixed(1)}` };
+      }),
     }));
   });
 
+  protected readonly words = binWords;
   protected readonly woe = woe;
   protected readonly whole = points;
   protected readonly share = share;

@@ -87,7 +87,7 @@ export class ScoreFigure {
       .bands.flatMap(({ from }) => (from === null || from <= low || from >= high ? [] : [from]))
       .map((value) => {
         const at = x(value);
-        const shown = at - last > 34 && at > left + 8 && at < right - 8;
+        const shown = at - last > 34 && at > left + 56 && at < right - 8; // left of that stands the name of the axis
         if (shown) last = at;
         return { value, x: at, text: shown ? points(value) : '' };
       });

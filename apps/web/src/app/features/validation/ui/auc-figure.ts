@@ -10,7 +10,7 @@ import { aucWords, hosmerLemeshowWords, performanceFinding } from './validation-
 
 const rowHeight = 40;
 
-/** AUC by partition with DeLong's 95 % interval, and under it the other measures; out of time stays covered until opened. */
+/** AUC by partition with DeLong's 95 % interval, and under it the other measures; out-of-time stays covered until opened. */
 @Component({
   selector: 'ts-auc-figure',
   changeDetection: ChangeDetectionStrategy.OnPush,
@@ -37,6 +37,7 @@ const rowHeight = 40;
             }
           }
           <svg:line class="axis" [attr.x1]="layout().left" [attr.x2]="layout().right" [attr.y1]="layout().axis" [attr.y2]="layout().axis" />
+          <svg:text x="0" [attr.y]="layout().axis + 20">AUC</svg:text>
           @for (tick of ticks(); track tick.value) {
             <svg:line class="axis" [attr.x1]="tick.x" [attr.x2]="tick.x" [attr.y1]="layout().axis" [attr.y2]="layout().axis + 5" />
             <svg:text class="middle" [attr.x]="tick.x" [attr.y]="layout().axis + 20">{{ tick.text }}</svg:text>
@@ -141,11 +142,11 @@ export class AucFigure {
 /** The measures of the performance, by partition; used as the figure's table and beside it. */
 export const measures: readonly Column<PartitionAuc>[] = [
   { key: 'partition', label: 'Partition', value: (row) => partitionName(row.partition) },
-  { key: 'rows', label: 'Rows', kind: 'count', value: (row) => row.rows },
+  { key: 'rows', label: 'Goods and bads', kind: 'count', value: (row) => row.rows },
   { key: 'bads', label: 'Bads', kind: 'count', value: (row) => row.bads, format: (row) => `${count(row.bads)} (${share(row.bads / (row.goods + row.bads))})` },
   { key: 'auc', label: 'AUC', kind: 'metric', value: (row) => row.auc },
-  { key: 'lower', label: 'from', unit: '95 %', kind: 'metric', value: (row) => row.lower },
-  { key: 'upper', label: 'to', unit: '95 %', kind: 'metric', value: (row) => row.upper },
+  { key: 'lower', label: 'AUC from', unit: '95 %', kind: 'metric', value: (row) => row.lower },
+  { key: 'upper', label: 'AUC to', unit: '95 %', kind: 'metric', value: (row) => row.upper },
   { key: 'gini', label: 'Gini', kind: 'metric', value: (row) => 2 * row.auc - 1 },
   { key: 'ks', label: 'KS', kind: 'metric', value: (row) => row.ks },
   { key: 'brier', label: 'Brier', kind: 'metric', value: (row) => row.brier, format: (row) => metric(row.brier) },

@@ -5,7 +5,7 @@ import type { Stability, StabilityRow } from '@tallystone/contracts/validation/s
 import { type Column } from '../../../ui/column';
 import { ElementWidth } from '../../../ui/element-width';
 import { FigureFrame, FigurePoint, type FigureTable } from '../../../ui/figure-frame';
-import { fixed, share } from '../../../ui/numbers';
+import { binWords, fixed, share } from '../../../ui/numbers';
 import { intervalChart } from './interval-rows';
 import { pointsWords, stabilityFinding, unsure } from './validation-view';
 
@@ -77,12 +77,12 @@ export class StabilityFigure {
   );
   protected readonly binRows = computed(() => {
     const { rows } = this.binChart();
-    return this.bins().map((bin, i) => ({ ...rows[i], key: `${i} ${bin.label}`, name: clip(bin.label, this.narrow() ? 14 : 27), words: pointsWords(bin), spoken: `${bin.label}: ${pointsWords(bin)} points against neutral` }));
+    return this.bins().map((bin, i) => ({ ...rows[i], key: `${i} ${bin.label}`, name: clip(binWords(bin.label), this.narrow() ? 14 : 27), words: pointsWords(bin), spoken: `${binWords(bin.label)}: ${pointsWords(bin)} points against neutral` }));
   });
   protected readonly binTitle = computed(() => `Points of ${this.choices().find((row) => row.column === this.chosen())?.label ?? ''} over resamples`);
   protected readonly binTable = computed<FigureTable<BinRow>>(() => {
     const columns: Column<BinRow>[] = [
-      { key: 'label', label: 'Attribute', value: (row) => row.label },
+      { key: 'label', label: 'Attribute', value: (row) => row.label, format: (row) => binWords(row.label) },
       { key: 'points', label: 'Points', unit: 'against neutral', kind: 'number', decimals: 1, value: (row) => row.points },
       { key: 'lower', label: 'from', unit: '2.5 %', kind: 'number', decimals: 1, value: (row) => row.lower },
       { key: 'upper', label: 'to', unit: '97.5 %', kind: 'number', decimals: 1, value: (row) => row.upper },

@@ -50,7 +50,7 @@ describe('performance', () => {
   });
   it('writes intervals and tests', () => {
     expect(aucWords(partition('holdOut', 0.8, { lower: null, upper: null }))).toBe('0.800');
-    expect(hosmerLemeshowWords(partition('holdOut', 0.8))).toBe('9.78 on 8, p 0.28');
+    expect(hosmerLemeshowWords(partition('holdOut', 0.8))).toBe('9.78 on 8, p = 0.28');
     expect(hosmerLemeshowWords(partition('holdOut', 0.8, { hosmerLemeshow: null }))).toBe('not computed');
   });
 });

@@ -1,5 +1,5 @@
 import type { HalvesRow, PartitionAuc, Replication, Stability, StabilityRow, ValidationWork } from '@tallystone/contracts/validation/schema';
-import { count, fixed, metric, plural, points, share, significant } from '../../../ui/numbers';
+import { count, fixed, metric, pValue, plural, points, share, significant } from '../../../ui/numbers';
 
 /** Below this share of resamples with the sign of the version a coefficient is flagged (common practice). */
 export const sameSignFlag = 0.95;
@@ -100,10 +100,10 @@ export function nextTest(work: ValidationWork): string | null {
   return null;
 }
 
-/** "Hosmer-Lemeshow 7.1 on 8 degrees of freedom, p 0.53". */
+/** "7.10 on 8, p = 0.53": the statistic on its degrees of freedom. */
 export function hosmerLemeshowWords({ hosmerLemeshow: test }: PartitionAuc): string {
   if (test === null || test.statistic === null) return 'not computed';
-  return `${fixed(test.statistic, 2)} on ${test.degreesOfFreedom}, p ${significant(test.pValue, 2)}`;
+  return `${fixed(test.statistic, 2)} on ${test.degreesOfFreedom}, ${pValue(test.pValue)}`;
 }
 
 /** "+12 (8 to 17)": points of a bin with their interval over resamples. */

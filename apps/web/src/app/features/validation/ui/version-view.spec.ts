@@ -25,7 +25,7 @@ describe('the gate ahead', () => {
 });
 
 describe('the sentence of a version', () => {
-  const begin = '8 characteristics of fit “Lasso” at penalty 0.0095, frozen 3 November 2026 by Marian.';
+  const begin = '8 characteristics of fit “Lasso” at penalty 0.0095, frozen 3\u00A0November\u00A02026 by Marian.';
   it('says what is missing, else for whom it waits', () => {
     expect(versionFinding(frozen)).toBe(`${begin} 2 things are missing before it can go on.`);
     expect(versionFinding({ ...frozen, state: 'Submitted', waitingFor: 'a validator to start' })).toBe(`${begin} It waits for a validator to start.`);

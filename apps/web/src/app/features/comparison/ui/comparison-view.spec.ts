@@ -1,0 +1,23 @@
+import type { ComparedMetrics, PairedTest } from '@tallystone/contracts/comparison/schema';
+import { aucText, coefficientText, testText } from './comparison-view';
+
+const test = (change: Partial<PairedTest>): PairedTest => ({ fitId: 'b', partition: 'holdOut', difference: 0.0031, pValue: 0.0421, ...change }) as PairedTest;
+
+describe('the words of a comparison', () => {
+  it('give a difference with its p-value, and none on rows that both fits were developed on', () => {
+    expect(testText(test({}))).toBe('+0.0031, p = 0.042');
+    expect(testText(test({ difference: -0.02, pValue: 1e-9 }))).toBe('\u22120.0200, p < 0.001');
+    expect(testText(test({ partition: 'development' }))).toBe('+0.0031');
+    expect(testText(test({ pValue: null }))).toBe('+0.0031, no test');
+    expect(testText(undefined)).toBe('\u2013');
+  });
+
+  it('give AUC with its interval, and tell out of the fit from shrunk to zero', () => {
+    expect(aucText({ auc: 0.781, aucLower: 0.77, aucUpper: 0.792 } as ComparedMetrics)).toBe('0.781 (0.770 to 0.792)');
+    expect(aucText({ auc: 0.781, aucLower: null, aucUpper: null } as ComparedMetrics)).toBe('0.781');
+    expect(aucText(null)).toBe('\u2013');
+    expect(coefficientText(null)).toBe('not in fit');
+    expect(coefficientText(0)).toBe('0');
+    expect(coefficientText(-0.0812)).toBe('\u22120.081');
+  });
+});
