@@ -26,9 +26,9 @@ module.exports = {
     {
       name: 'shipped-code-needs-no-development-package',
       comment:
-        'npm installs development packages for work on the project; what is served must do without them. The thread entry outside the bundle is for work on the project.',
+        'npm installs development packages for work on the project; what is served must do without them. The thread entries outside the bundle are for work on the project.',
       severity: 'error',
-      from: { path: '^(server/src|libs)/', pathNot: except('^server/src/threads/entry\\.mjs$', spec) },
+      from: { path: '^(server/src|libs)/', pathNot: except('^server/src/threads/(helper-)?entry\\.mjs$', spec) },
       to: { dependencyTypes: ['npm-dev', 'npm-no-pkg', 'npm-unknown'], dependencyTypesNot: ['type-only'] },
     },
 
