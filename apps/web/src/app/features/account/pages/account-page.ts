@@ -50,13 +50,15 @@ import { showInvalid } from '../../../ui/show-invalid';
       list-style: none;
     }
     .sessions li {
-      display: flex;
-      flex-wrap: wrap;
+      display: grid;
+      grid-template-columns: minmax(0, 1fr) max-content;
       align-items: center;
-      justify-content: space-between;
       gap: 2px 16px;
       padding: 8px 0;
       border-bottom: 1px solid var(--ts-hairline);
+    }
+    .sessions button {
+      margin-right: -12px; // its words on the margin
     }
     .ts-caption {
       display: block;
@@ -74,6 +76,9 @@ export class AccountPage {
   protected readonly roles = computed(() => this.person()?.roles.join(', ') || 'no role yet');
   protected readonly sessions = ownSessions();
   protected readonly list = computed(() => (this.sessions.hasValue() ? this.sessions.value().sessions : []));
+  protected readonly all = signal(false);
+  /** The latest few; nobody looks for their own among many. */
+  protected readonly shown = computed(() => (this.all() ? this.list() : this.list().slice(0, 6)));
   protected readonly ending = new Task();
   protected readonly changing = new Task();
   protected readonly changed = signal(false);

@@ -89,6 +89,7 @@ interface TableRow {
     th[scope='row'],
     thead th:first-child {
       text-align: left;
+      padding-left: 0;
       color: var(--ts-ink);
     }
     thead th {

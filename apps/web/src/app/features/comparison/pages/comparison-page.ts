@@ -13,7 +13,7 @@ import { PageHeader } from '../../../ui/page-header';
 import { PartitionMark } from '../../../ui/partition-mark';
 import { ProblemList } from '../../../ui/problem-list';
 import { Comparisons } from '../data/comparisons';
-import { aucText, coefficientText, comparisonFinding, contested, testText } from '../ui/comparison-view';
+import { aucText, coefficientText, comparisonFinding, contested, namedIn, testText } from '../ui/comparison-view';
 
 type Partition = 'development' | 'holdOut' | 'outOfTime';
 
@@ -122,6 +122,7 @@ export class ComparisonPage {
     ];
   });
 
+  protected readonly named = namedIn;
   protected readonly byColumn = (row: ComparedCharacteristic): string => row.column;
   protected readonly isOut = (row: ComparedCharacteristic): boolean => row.coefficients.every((value) => value === null || value === 0);
 

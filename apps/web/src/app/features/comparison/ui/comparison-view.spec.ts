@@ -1,5 +1,5 @@
 import type { ComparedMetrics, PairedTest } from '@tallystone/contracts/comparison/schema';
-import { aucText, coefficientText, testText } from './comparison-view';
+import { aucText, coefficientText, namedIn, testText } from './comparison-view';
 
 const test = (change: Partial<PairedTest>): PairedTest => ({ fitId: 'b', partition: 'holdOut', difference: 0.0031, pValue: 0.0421, ...change }) as PairedTest;
 
@@ -10,6 +10,12 @@ describe('the words of a comparison', () => {
     expect(testText(test({ partition: 'development' }))).toBe('+0.0031');
     expect(testText(test({ pValue: null }))).toBe('+0.0031, no test');
     expect(testText(undefined)).toBe('\u2013');
+  });
+
+  it('count the names of a long list, and leave a short one', () => {
+    expect(namedIn('a, b, c, d, e, f, g')).toBe('7 characteristics');
+    expect(namedIn('age, income')).toBeNull();
+    expect(namedIn('none')).toBeNull();
   });
 
   it('give AUC with its interval, and tell out of the fit from shrunk to zero', () => {

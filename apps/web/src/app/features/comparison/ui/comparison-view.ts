@@ -46,3 +46,9 @@ export function contested(entry: ComparedCharacteristic): boolean {
   const kept = entry.coefficients.map((value) => value !== null && value !== 0);
   return kept.some(Boolean) && !kept.every(Boolean);
 }
+
+/** "26 characteristics" for a setting that lists more names than one reads in passing; null for any other. */
+export function namedIn(setting: string): string | null {
+  const names = setting.split(', ');
+  return names.length > 6 ? plural(names.length, 'characteristic') : null;
+}

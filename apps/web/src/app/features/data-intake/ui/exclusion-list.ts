@@ -137,6 +137,9 @@ import { type Condition, conditionOf, conditions, testWith, valueOf } from './ex
       gap: 10px;
       align-items: center;
     }
+    .test button {
+      justify-self: start;
+    }
     .head mat-form-field:first-child {
       grid-column: span 2;
     }

@@ -16,6 +16,7 @@ export function samplesFinding({ samples, uploads }: SampleList): string {
   if (waiting > 0)
     return `${plural(waiting, 'file')} of ${count(samples.length)} wait${waiting === 1 ? 's' : ''} for reading choices.`;
   if (defined === 0) return `${plural(samples.length, 'sample')}, none defined yet: say what is good and bad, and confirm.`;
+  if (samples.length === 1) return '1 sample, with a confirmed definition.';
   return `${plural(samples.length, 'sample')}, ${count(defined)} of them with a confirmed definition.`;
 }
 

@@ -26,6 +26,7 @@ describe('documents', () => {
   });
   it('are counted across models', () => {
     expect(documentsFinding([])).toBeNull();
+    expect(documentsFinding([document(1)])).toBe('1 document of 1 model, kept as it was made.');
     expect(documentsFinding([document(1), document(2), document(1, { modelId: 'm2' })])).toBe('3 documents of 2 models, kept as they were made.');
   });
   it('fall behind when the version moves on', () => {

@@ -13,7 +13,7 @@ export function versionDocumentsFinding(documents: readonly DocumentSummary[]): 
 export function documentsFinding(documents: readonly DocumentSummary[]): string | null {
   if (documents.length === 0) return null;
   const models = new Set(documents.map(({ modelId }) => modelId)).size;
-  return `${plural(documents.length, 'document')} of ${plural(models, 'model')}, kept as they were made.`;
+  return `${plural(documents.length, 'document')} of ${plural(models, 'model')}, kept as ${documents.length === 1 ? 'it was' : 'they were'} made.`;
 }
 
 /** What happened to the version after its newest document was made, in words; null while the document is up to date or there is none. */

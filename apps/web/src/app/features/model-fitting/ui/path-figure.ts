@@ -51,7 +51,7 @@ export class PathFigure {
     const left = Math.min(this.narrow() ? 136 : 190, Math.max(136, longest * perLetter + 18));
     const right = this.width() - 12;
     const deviance = { top: 34, bottom: this.narrow() ? 130 : 150 };
-    const coefficients = { top: deviance.bottom + 30, bottom: deviance.bottom + (this.narrow() ? 190 : 240) };
+    const coefficients = { top: deviance.bottom + 38, bottom: deviance.bottom + (this.narrow() ? 198 : 248) };
     const tally = coefficients.bottom + 34;
     const axis = tally + this.path().characteristics.length * rowHeight + 4;
     return { left, right, deviance, coefficients, tally, axis, height: axis + 30 };

@@ -124,7 +124,8 @@ export class ScorecardPage {
   protected readonly blocks = computed(() => {
     const scorecard = this.scorecard();
     const shown = this.shown();
-    return scorecard && shown ? pointsUnder(scorecard, shown.scaling) : [];
+    // What can decide most stands first.
+    return scorecard && shown ? pointsUnder(scorecard, shown.scaling).sort((a, b) => b.range - a.range) : [];
   });
   protected readonly readings = computed(() => mapped(this.shown(), ({ scaling }) => scaleReadings(scaling)) ?? []);
   protected readonly chosen = computed(() =>

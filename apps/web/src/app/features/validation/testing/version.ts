@@ -76,6 +76,7 @@ export const replication = (change: Partial<Replication> = {}): Replication => (
   scoresCompared: 1000,
   scoresEqual: true,
   performance: [],
+  challenge: null,
   dataSha256: sha,
   specificationSha256: sha,
   codeVersion: '1.0.0',

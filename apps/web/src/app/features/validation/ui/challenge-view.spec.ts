@@ -29,7 +29,7 @@ describe('the challenger beside an independent replication', () => {
     expect(challengeFinding(challenge)).toBe(
       'No characteristic kept is nearly collinear: the largest VIF is 1.24 (age), the condition index 1.6. A foreign library finds the same unpenalised fit, to 0.0002.',
     );
-    expect(foreignNote(challenge)).toContain('4 000 of 12 000'.replace(/ /g, '\u2009'));
+    expect(foreignNote(challenge)).toContain('4\u202F000 of 12\u202F000');
   });
 
   it('flags inflation, names exact collinearity, and says why there is no foreign fit', () => {

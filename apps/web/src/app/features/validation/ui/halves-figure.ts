@@ -3,9 +3,12 @@ import type { HalvesRow, Replication } from '@tallystone/contracts/validation/sc
 import { type Column } from '../../../ui/column';
 import { ElementWidth } from '../../../ui/element-width';
 import { FigureFrame, FigurePoint, type FigureTable } from '../../../ui/figure-frame';
-import { moment } from '../../../ui/numbers';
+import { binWords, moment } from '../../../ui/numbers';
 import { halvesLayout, modellersHalf, openingAt, standOff, validatorsHalf } from './halves-geometry';
 import { halfNumber, halvesFinding, meetWords, methodName, shownRows } from './validation-view';
+
+/** "average_balance_6m, -244 to under 42: points" with the numbers of the bin as they are read. */
+const labelWords = (label: string): string => label.replace(/^([^,]+, )(.+)(: points)$/, (_, of: string, bin: string, what: string) => of + binWords(bin) + what);
 
 /** The two halves: one row a number; notched edges that meet where the numbers meet, and stand off, in ochre, where they do not. */
 @Component({
@@ -128,17 +131,18 @@ export class HalvesFigure {
     return this.shown().map((row, i) => {
       const place = layout.rows[i];
       const words = meetWords(row);
+      const label = labelWords(row.label);
       return {
         place: row.place,
         meets: row.meets,
         y: place.y,
-        short: row.label.length > room ? `${row.label.slice(0, room - 1)}…` : row.label,
+        short: label.length > room ? `${label.slice(0, room - 1)}…` : label,
         modeller: halfNumber(row.modeller),
         validator: halfNumber(row.validator),
         words,
         numberX: layout.split + layout.gap + (row.meets ? 0 : standOff) + (layout.narrow ? 16 : 24),
         opening: row.meets ? null : openingAt(layout, place),
-        spoken: `${row.label}: ${halfNumber(row.modeller)} and ${halfNumber(row.validator)}, ${words}`,
+        spoken: `${label}: ${halfNumber(row.modeller)} and ${halfNumber(row.validator)}, ${words}`,
       };
     });
   });
