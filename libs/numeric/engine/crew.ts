@@ -67,7 +67,7 @@ const PIECE_MASK = 0xffff;
 const ROUNDS = 0x7fff;
 
 /** Looks before a thread sleeps: waking takes longer than most rounds' gaps. */
-const LOOKS = 2000;
+const LOOKS = 200;
 const PATIENCE_MS = 60_000;
 
 /**

@@ -7,6 +7,8 @@ import type { Fit, FitProblem, Grid, Penalty } from '../penalised/problem';
 import { Generator } from '../random/generator';
 import { resampleFits } from '../resampling/stability';
 import { randomProblem } from '../testing/problems';
+import { codedColumns } from './coded-columns';
+import { Engine } from './engine';
 import { fastCrossValidation, fastFit, fastPath, fastResamples } from './dispatch';
 
 const ROWS = 6000;
@@ -108,6 +110,22 @@ describe('the engine fits one lambda', () => {
     expectSameFit(problem, fastFit(problem, 0.004, { tolerance: 1e-10 }), wanted);
     const start = fitAt(problem, 0.006);
     expectSameFit(problem, fastFit(problem, 0.004, { tolerance: 1e-10, start }), wanted);
+  });
+});
+
+describe('the engine fits again after a bin has changed', () => {
+  it('as if the column had always been so', () => {
+    const problem = problemWith({ mixing: 1, standardize: true }, { weights: true, linear: true });
+    const columns = codedColumns(problem.columns);
+    const engine = new Engine({ ...problem, columns });
+    const start = engine.fitAt(0.004);
+    const [, second] = columns;
+    if (second.kind !== 'coded') throw new Error('The second column has codes.');
+    const codes = second.codes.map((code, i) => (code === 0 && i % 2 === 0 ? second.values.length : code));
+    const values = Float64Array.of(...second.values, 1.3);
+    const again = engine.withColumn(1, { kind: 'coded', codes, values }).fitAt(0.004, { start, tolerance: 1e-10 });
+    const changed = problem.columns.map((column, j) => (j === 1 ? Float64Array.from(codes, (code) => values[code]) : column));
+    expectSameFit({ ...problem, columns: changed }, again, fitAt({ ...problem, columns: changed }, 0.004, { tolerance: 1e-10 }));
   });
 });
 

@@ -4,12 +4,12 @@ import { automaticGrid, type FitOptions } from '../penalised/path';
 import { violation } from '../penalised/penalty';
 import type { Fit, Grid, Path } from '../penalised/problem';
 import { requireLambda } from '../penalised/validation';
-import type { CodedProblem } from './coded-columns';
+import type { CodedColumn, CodedProblem } from './coded-columns';
 import { Alone, type Crew } from './crew';
 import { follow, type Follower } from './follow';
 import type { KernelKind } from './kernels/kernels';
 import { copyPoint, pointOf, residualAt, type Lane, type Point } from './lane';
-import { layOut, LANES_SINGLE, type Layout } from './layout';
+import { layOut, LANES_SINGLE, type Layout, type LayoutOptions } from './layout';
 import { Passes, type Precision } from './passes';
 import { drawStratified, strataOf } from '../resampling/bootstrap';
 import { fromTables, fullStandardisation, ownStandardisation, weightSums, type Standardisation } from './standardisation';
@@ -63,7 +63,8 @@ export class Engine {
 
   constructor(
     readonly problem: CodedProblem,
-    options: EngineOptions = {},
+    private readonly options: EngineOptions = {},
+    earlier?: LayoutOptions['earlier'],
   ) {
     const { crew = new Alone() } = options;
     this.layout = layOut(problem, {
@@ -71,13 +72,27 @@ export class Engine {
       kernels: options.kernels,
       workers: 1 + crew.helpers,
       counted: options.counted,
+      earlier,
     });
     this.passes = new Passes(this.layout, crew);
     this.full = fullStandardisation(problem, this.layout);
   }
 
+  /** Lets the crew go. */
   close(): void {
     this.passes.close();
+  }
+
+  /**
+   * An engine for the same rows with another column in place of one: what does not change is taken over, so that a changed bin costs little. This
+   * one is closed by it.
+   * @example engine.withColumn(3, { kind: 'coded', codes, values }).fitAt(lambda, { start })
+   */
+  withColumn(place: number, column: CodedColumn): Engine {
+    const columns = this.problem.columns.map((own, j) => (j === place ? column : own));
+    this.close();
+    if (this.problem.columns[place].kind !== 'coded') return new Engine({ ...this.problem, columns }, this.options);
+    return new Engine({ ...this.problem, columns }, this.options, { layout: this.layout, changed: [place] });
   }
 
   /** The fit of intercept and unpenalised columns, with the gradient of all. */
@@ -234,7 +249,7 @@ export class Engine {
     let found: Solved | null = null;
     if (options.start) {
       const point = this.pointFrom(options.start);
-      solvePath(this.passes, point, [{ lambda, tolerance, from: point }], {
+      solvePath(this.passes, null, [{ lambda, tolerance, from: point }], {
         precision: 'double',
         standardisation: this.full,
         lanes: 1,

@@ -89,6 +89,7 @@ export interface Layout {
   readonly codesOfPacks: number;
   readonly bins: number;
   readonly folds: number;
+  readonly rowsOfFold: readonly number[];
   readonly blocks: number;
   readonly chunks: number;
   /** A chunk lies in one fold. */
@@ -116,6 +117,8 @@ export interface LayoutOptions {
   readonly workers?: number;
   /** Room for counts by row and lane: what resamples need. */
   readonly counted?: boolean;
+  /** A layout of the same problem but for some columns (their numbers): packs without one of them are taken over as they are. */
+  readonly earlier?: { readonly layout: Layout; readonly changed: readonly number[] };
 }
 
 /** Below lie the constants of the kernels. */
@@ -142,7 +145,10 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
   const folds = options.folds;
   let foldCount = 1;
   for (let i = 0; folds && i < folds.length; i++) foldCount = Math.max(foldCount, folds[i] + 1);
-  const { order, perFold } = sorted(outcome.length, weights, folds, foldCount);
+  const { earlier } = options;
+  const { order, perFold } = earlier
+    ? { order: earlier.layout.order, perFold: earlier.layout.rowsOfFold }
+    : sorted(outcome.length, weights, folds, foldCount);
   const rows = order.length;
   const blocks: { rows: number; fold: number }[] = [];
   perFold.forEach((count, fold) => {
@@ -158,10 +164,9 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
 
   const codedPlaces = columns.flatMap((column, j) => (column.kind === 'coded' ? [j] : []));
   const linearPlaces = columns.flatMap((column, j) => (column.kind === 'linear' ? [j] : []));
-  const packs = packColumns(
-    codedPlaces.map((j) => columns[j].values.length),
-    rows >= PACKED_ABOVE_ROWS ? 256 : 64,
-  );
+  const most = rows >= PACKED_ABOVE_ROWS ? 256 : 64;
+  const binsOf = codedPlaces.map((j) => columns[j].values.length);
+  const { packs, kept } = earlier ? repacked(earlier, codedPlaces, binsOf, most) : { packs: packColumns(binsOf, most), kept: [] };
   const internal: InternalColumn[] = [];
   let bins = 0;
   packs.forEach((pack, p) => {
@@ -245,39 +250,7 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
   chunks.forEach((chunk, c) => i32.set([chunk.first, chunk.blocks], (at.chunkTable >> 2) + c * 2));
   units.forEach((unit, u) => i32.set([unit.first, unit.blocks, unit.step], (at.gramUnits >> 2) + u * 3));
 
-  // Codes of packs, and where each code's bins are.
-  const binWeights = new Float64Array(foldCount * bins);
-  let column = 0;
-  let firstCode = 0;
-  let decode = at.columnTable + internal.length * 8;
-  packs.forEach((pack, p) => {
-    i32.set([firstCode, pack.codes, column, pack.members.length], (at.packTable >> 2) + p * 4);
-    const byCode = new Float64Array(foldCount * pack.codes);
-    const sources = pack.members.map((member) => {
-      const own = columns[codedPlaces[member]];
-      return own.kind === 'coded' ? own.codes : new Uint8Array(0);
-    });
-    for (let s = 0; s < rows; s++) {
-      const i = order[s];
-      let code = 0;
-      for (let k = 0; k < sources.length; k++) code += sources[k][i] * pack.strides[k];
-      const slot = slots[s];
-      u8[at.codes + (slot >> 8) * packs.length * BLOCK + p * BLOCK + (slot & 255)] = code;
-      byCode[blocks[slot >> 8].fold * pack.codes + code] += weights ? weights[i] : 1;
-    }
-    pack.members.forEach((_, k) => {
-      const { firstBin, bins: own } = internal[column + k];
-      i32.set([firstBin, decode], (at.columnTable >> 2) + (column + k) * 2);
-      for (let code = 0; code < pack.codes; code++) {
-        const bin = Math.floor(code / pack.strides[k]) % own;
-        u8[decode + code] = bin;
-        for (let fold = 0; fold < foldCount; fold++) binWeights[fold * bins + firstBin + bin] += byCode[fold * pack.codes + code];
-      }
-      decode += pack.codes;
-    });
-    column += pack.members.length;
-    firstCode += pack.codes;
-  });
+  const binWeights = layOutCodes(problem, { packs, codedPlaces, internal, bins, order, slots, blocks, foldCount, u8, i32, at, kept, earlier });
 
   const moments = layOutLinear(problem, { linearPlaces, order, slots, blocks, foldCount, f32, f64, at });
   return {
@@ -292,6 +265,7 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
     codesOfPacks,
     bins,
     folds: foldCount,
+    rowsOfFold: perFold,
     blocks: blocks.length,
     chunks: chunks.length,
     chunksOfFold,
@@ -313,7 +287,7 @@ function sorted(
   weights: ArrayLike<number> | undefined,
   folds: ArrayLike<number> | undefined,
   foldCount: number,
-): { order: Uint32Array; perFold: number[] } {
+): { order: Uint32Array; perFold: readonly number[] } {
   const perFold = new Array<number>(foldCount).fill(0);
   const takes = (i: number): boolean => !weights || weights[i] > 0;
   for (let i = 0; i < length; i++) if (takes(i)) perFold[folds ? folds[i] : 0]++;
@@ -377,6 +351,111 @@ function gramUnitsOf(
     start = end;
   }
   return units;
+}
+
+/** The packs of an earlier layout, as far as none of their columns has changed; `kept` says which of the old ones the first packs are. */
+function repacked(
+  earlier: { readonly layout: Layout; readonly changed: readonly number[] },
+  codedPlaces: readonly number[],
+  bins: readonly number[],
+  most: number,
+): { packs: Pack[]; kept: number[] } {
+  const touched = (pack: Pack): boolean => pack.members.some((member) => earlier.changed.includes(codedPlaces[member]));
+  const kept: number[] = [];
+  const packs: Pack[] = [];
+  const loose: number[] = [];
+  earlier.layout.packs.forEach((pack, p) => {
+    if (touched(pack)) loose.push(...pack.members);
+    else {
+      kept.push(p);
+      packs.push(pack);
+    }
+  });
+  const again = packColumns(
+    loose.map((member) => bins[member]),
+    most,
+  );
+  return { packs: [...packs, ...again.map((pack) => ({ ...pack, members: pack.members.map((place) => loose[place]) }))], kept };
+}
+
+/** Writes codes of packs, and where each code's bins are; returns sums of weights by fold and bin. */
+function layOutCodes(
+  problem: CodedProblem,
+  on: {
+    packs: readonly Pack[];
+    codedPlaces: readonly number[];
+    internal: readonly InternalColumn[];
+    bins: number;
+    order: Uint32Array;
+    slots: Uint32Array;
+    blocks: readonly { rows: number; fold: number }[];
+    foldCount: number;
+    u8: Uint8Array;
+    i32: Int32Array;
+    at: Places;
+    kept: readonly number[];
+    earlier: LayoutOptions['earlier'];
+  },
+): Float64Array {
+  const { packs, codedPlaces, internal, bins, order, blocks, foldCount, u8, i32, at, kept, earlier } = on;
+  const { columns, weights } = problem;
+  const binWeights = new Float64Array(foldCount * bins);
+  const before = earlier ? new Uint8Array(earlier.layout.machine.buffer) : u8;
+  let column = 0;
+  let firstCode = 0;
+  let decode = at.columnTable + internal.length * 8;
+  packs.forEach((pack, p) => {
+    i32.set([firstCode, pack.codes, column, pack.members.length], (at.packTable >> 2) + p * 4);
+    const byCode = new Float64Array(foldCount * pack.codes);
+    const sources = pack.members.map((member) => {
+      const own = columns[codedPlaces[member]];
+      return own.kind === 'coded' ? own.codes : new Uint8Array(0);
+    });
+    const { strides } = pack;
+    let s = 0;
+    for (let b = 0; b < blocks.length; b++) {
+      const { rows, fold } = blocks[b];
+      const to = at.codes + (b * packs.length + p) * BLOCK;
+      const sums = fold * pack.codes;
+      if (p < kept.length && earlier) {
+        const from = earlier.layout.at.codes + (b * earlier.layout.packs.length + kept[p]) * BLOCK;
+        for (let i = 0; i < rows; i++) u8[to + i] = before[from + i];
+      } else packBlock(sources, strides, order, s, rows, u8, to);
+      for (let i = 0; i < rows; i++) byCode[sums + u8[to + i]] += weights ? weights[order[s + i]] : 1;
+      s += rows;
+    }
+    pack.members.forEach((_, k) => {
+      const { firstBin, bins: own } = internal[column + k];
+      i32.set([firstBin, decode], (at.columnTable >> 2) + (column + k) * 2);
+      for (let code = 0; code < pack.codes; code++) {
+        const bin = Math.floor(code / strides[k]) % own;
+        u8[decode + code] = bin;
+        for (let fold = 0; fold < foldCount; fold++) binWeights[fold * bins + firstBin + bin] += byCode[fold * pack.codes + code];
+      }
+      decode += pack.codes;
+    });
+    column += pack.members.length;
+    firstCode += pack.codes;
+  });
+  return binWeights;
+}
+
+function packBlock(
+  sources: readonly Uint8Array[],
+  strides: readonly number[],
+  order: Uint32Array,
+  first: number,
+  rows: number,
+  u8: Uint8Array,
+  to: number,
+): void {
+  const [a] = sources;
+  for (let i = 0; i < rows; i++) u8[to + i] = a[order[first + i]];
+  for (let k = 1; k < sources.length; k++) {
+    const source = sources[k];
+    const stride = strides[k];
+    for (let i = 0; i < rows; i++) u8[to + i] += source[order[first + i]] * stride;
+  }
 }
 
 function layOutLinear(

@@ -53,9 +53,9 @@ export interface WavefrontOptions {
 /**
  * Solves a path as a wavefront: lanes hold successive lambdas, each pass gives all of them their exact gradients, and each goes on from whichever
  * evaluated point violates its own optimality conditions least, its own or that of a lambda before it.
- * @param start a point with its gradient, optimal for a lambda before the first
+ * @param start a point with its gradient, optimal for a lambda before the first; null where every target has a point to begin at
  */
-export function solvePath(passes: Passes, start: Point, targets: readonly Target[], options: WavefrontOptions): void {
+export function solvePath(passes: Passes, start: Point | null, targets: readonly Target[], options: WavefrontOptions): void {
   const { precision, standardisation: s } = options;
   const size = s.used.length;
   const width = options.lanes ?? Math.min(8, lanesOf(precision));
@@ -66,7 +66,7 @@ export function solvePath(passes: Passes, start: Point, targets: readonly Target
   let reported = 0;
   let curvature: Curvature | null = null;
   let curvatureAt = -Infinity;
-  let latest: Point = start;
+  let latest: Point | null = start;
   const refresh = (point: Point, place: number): void => {
     curvatureAt = place;
     curvature = curvatureOf(sumOfGrams(passes.gram(point, s, 'small'), -1), size);
@@ -75,7 +75,7 @@ export function solvePath(passes: Passes, start: Point, targets: readonly Target
   const near = (place: number): Curvature => {
     if (!curvature || place >= curvatureAt + REFRESH) {
       const middle = riders.filter(({ evaluated }) => evaluated).at(Math.min(2, riders.length - 1));
-      refresh(middle?.point ?? latest, place);
+      refresh(middle?.point ?? latest ?? riders[0].point, place);
     }
     return curvature as unknown as Curvature;
   };
@@ -101,13 +101,14 @@ export function solvePath(passes: Passes, start: Point, targets: readonly Target
       if (target.from) copyPoint(target.from, rider.point);
       else {
         const from = riders.filter(({ evaluated }) => evaluated).at(-1)?.point ?? latest;
+        if (!from) throw new Error('A path without a start needs a point for each target.');
         rider.model.solve(near(riders[0]?.place ?? next), s, target.lambda, from, rider.point, goalOf(target));
       }
       riders.push(rider);
       next++;
     }
     passes.run(riders, precision);
-    const points: Point[] = [latest];
+    const points: (Point | null)[] = [latest];
     const kept: Rider[] = [];
     let contraction = 0;
     for (const rider of riders) {
@@ -137,6 +138,7 @@ export function solvePath(passes: Passes, start: Point, targets: readonly Target
     // Poor progress says that the curvature no longer serves; it is taken anew at the lane that is furthest behind.
     if (contraction > 0.5 && kept.length > 0) refresh(kept[0].point, kept[0].place);
     const bases = points.map((point) => {
+      if (!point) return null;
       const copy = pointOf(size);
       copyPoint(point, copy);
       return copy;
@@ -157,9 +159,9 @@ export function solvePath(passes: Passes, start: Point, targets: readonly Target
 const goalOf = (target: Target): number => Math.max(1e-13, 0.02 * target.tolerance);
 
 /** One step of a lane, from the base that suits it best. A step that overshot is halved. */
-function advance(rider: Rider, index: number, bases: readonly Point[], s: Standardisation, curvature: Curvature): void {
+function advance(rider: Rider, index: number, bases: readonly (Point | null)[], s: Standardisation, curvature: Curvature): void {
   const { point, before, target } = rider;
-  const own = bases[index + 1];
+  const own = bases[index + 1] as Point;
   if (rider.stepped) {
     const slope = slopeAlong(own, before, own, s, target.lambda);
     const was = slopeAlong(before, before, own, s, target.lambda);
@@ -172,9 +174,11 @@ function advance(rider: Rider, index: number, bases: readonly Point[], s: Standa
   let base = own;
   let least = rider.residual;
   for (let k = index; k >= Math.max(0, index - 2); k--) {
-    const violation = residualAt(bases[k], s, target.lambda);
+    const other = bases[k];
+    if (!other) continue;
+    const violation = residualAt(other, s, target.lambda);
     if (violation < 0.7 * least) {
-      base = bases[k];
+      base = other;
       least = violation;
     }
   }

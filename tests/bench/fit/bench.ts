@@ -8,8 +8,8 @@
  */
 import { CASES, type BenchCase } from './cases';
 import { hasGlmnet, timeGlmnet, type GlmnetTimes } from './glmnet';
-import { timeOurs, type OurTimes } from './ours';
-import { benchSample } from './sample';
+import { timeBootstrap, timeOurs, timeRefit, type OurTimes, type Timed } from './ours';
+import { benchSample, type BenchSample } from './sample';
 import { Alone } from '@tallystone/numeric/engine/crew';
 import { crewFor, warmCrew } from '../../../server/src/threads/crew';
 
@@ -29,46 +29,100 @@ if (threads > 1) {
 const withGlmnet = !alone && hasGlmnet();
 if (!withGlmnet && !alone) console.error('R with glmnet is not installed (Debian: r-base-core r-cran-glmnet); ours alone.');
 
+const seconds = (value: number): string => (value < 1 ? `${(1000 * value).toFixed(0)} ms` : `${value.toFixed(2)} s`);
+const figure = (value: number): string => value.toExponential(1);
+let memory = 0;
 const median = (values: readonly number[]): number => [...values].sort((a, b) => a - b)[Math.floor((values.length - 1) / 2)];
 const peakMemoryMB = (): number => process.resourceUsage().maxRSS / 1024;
 
+const results: BenchResult[] = [];
 for (const of of chosen) {
   const sample = benchSample(of.rows, of.columns, 20261201);
-  const ours: OurTimes[] = [];
-  const theirs: GlmnetTimes[] = [];
-  for (let round = 0; round < of.rounds; round++) {
-    ours.push(timeOurs(of, sample, () => crew(of.rows * of.columns)));
-    if (withGlmnet) theirs.push(timeGlmnet(of, sample, of.extrapolateFrom ? 'path' : 'cv'));
-  }
-  const memory = peakMemoryMB();
-  const timed = (part: 'path' | 'cv') => ({
-    seconds: median(ours.map((one) => one[part].seconds)),
-    residual: Math.max(...ours.map((one) => one[part].residual)),
-  });
-  const result = {
-    case: of.name,
-    rows: of.rows,
-    columns: of.columns,
-    ours: { path: timed('path'), cv: timed('cv'), peakMemoryMB: memory },
-    ...glmnetPart(of, theirs, timed('path').seconds, timed('cv').seconds),
-  };
-  if (json) console.log(JSON.stringify(result));
-  else console.log(result, ours.map(({ passes }) => passes), 'largest relative difference in deviance', differenceOf(ours[0], theirs[0]));
+  const result = of.kind === 'path' ? measurePath(of, sample) : measureOther(of, sample);
+  results.push(result);
+  if (json) console.log(JSON.stringify(result.json));
+  else console.log(describe(result));
 }
 
-function glmnetPart(of: BenchCase, theirs: readonly GlmnetTimes[], path: number, cv: number) {
-  if (theirs.length === 0) return { glmnet: null, ratio: null };
-  const pathSeconds = median(theirs.map((one) => one.path.seconds));
-  const cvTimes = theirs.flatMap((one) => (one.cv ? [one.cv] : []));
-  const cvSeconds = cvTimes.length > 0 ? median(cvTimes.map(({ seconds }) => seconds)) : null;
+interface BenchResult {
+  readonly json: Record<string, unknown>;
+  readonly lines: readonly string[];
+}
+
+function describe({ lines }: BenchResult): string {
+  return lines.join('\n');
+}
+
+function measureOther(of: BenchCase, sample: BenchSample): BenchResult {
+  const measure = of.kind === 'bootstrap' ? timeBootstrap : timeRefit;
+  measure(of, sample, () => crew(of.rows * of.columns));
+  const times = Array.from({ length: of.rounds }, () => measure(of, sample, () => crew(of.rows * of.columns)));
+  const timed = { seconds: median(times.map(({ seconds }) => seconds)), residual: Math.max(...times.map(({ residual }) => residual)) };
+  const peak = peakMemoryMB();
+  const what = of.kind === 'bootstrap' ? '200 resamples at 20 penalties' : 'one penalty again after a changed bin, warm';
   return {
-    glmnet: {
-      path: { seconds: pathSeconds, residual: theirs[0].path.residual },
-      cv: cvSeconds === null ? null : { seconds: cvSeconds, residual: cvTimes[0].residual },
-      peakMemoryMB: Math.max(...theirs.map((one) => one.peakMemoryMB)),
-    },
-    ratio: { path: pathSeconds / path, cv: cvSeconds === null ? null : cvSeconds / cv },
+    json: { case: of.name, rows: of.rows, columns: of.columns, ours: { [of.kind]: timed, peakMemoryMB: peak }, glmnet: null, ratio: null },
+    lines: [`${of.name}: ${of.rows} x ${of.columns}, ${what}: ${seconds(timed.seconds)}, residual ${figure(timed.residual)}, ${peak.toFixed(0)} MB`],
   };
+}
+
+function measurePath(of: BenchCase, sample: BenchSample): BenchResult {
+  const ours: OurTimes[] = [];
+  const theirs: GlmnetTimes[] = [];
+  // The product's threads live on from fit to fit, so the compiler has seen the code before; small cases are over before it has.
+  for (let warm = 0; of.rows < 100_000 && warm < 3; warm++) timeOurs(of, sample, () => crew(of.rows * of.columns));
+  for (let round = 0; round < of.rounds; round++) {
+    ours.push(timeOurs(of, sample, () => crew(of.rows * of.columns)));
+    if (round === of.rounds - 1) memory = peakMemoryMB();
+    if (withGlmnet) theirs.push(timeGlmnet(of, sample, of.extrapolateFrom ? 'path' : 'cv'));
+  }
+  const own = {
+    path: { seconds: median(ours.map(({ path }) => path.seconds)), residual: Math.max(...ours.map(({ path }) => path.residual)) },
+    cv: { seconds: median(ours.map(({ cv }) => cv.seconds)), residual: Math.max(...ours.map(({ cv }) => cv.residual)) },
+    peakMemoryMB: memory,
+  };
+  const glmnet = theirs.length > 0 ? glmnetTimes(of, theirs) : null;
+  const ratio = glmnet ? { path: glmnet.path.seconds / own.path.seconds, cv: glmnet.cv ? glmnet.cv.seconds / own.cv.seconds : null } : null;
+  const cpu = glmnet
+    ? { path: median(theirs.map(({ path }) => path.cpu)) / median(ours.map(({ path }) => path.cpu)), cv: cpuRatio(ours, theirs) }
+    : null;
+  const difference = differenceOf(ours[0], theirs[0]);
+  const marked = of.extrapolateFrom ? ` (extrapolated from the path by the ratio of ${of.extrapolateFrom})` : '';
+  const row = (name: string, path: Timed, cv: Timed | null, peak: number): string =>
+    `  ${name.padEnd(8)} path ${seconds(path.seconds)}, residual ${figure(path.residual)}; cross-validation ${cv ? `${seconds(cv.seconds)}, residual ${figure(cv.residual)}` : 'not measured'}; ${peak.toFixed(0)} MB`;
+  return {
+    json: { case: of.name, rows: of.rows, columns: of.columns, ours: own, glmnet, ratio },
+    lines: [
+      `${of.name}: ${of.rows} x ${of.columns}, mixing ${of.mixing}, ${ours[0].fits.length} penalties, ${threads} threads; medians of ${of.rounds}`,
+      row('ours', own.path, own.cv, own.peakMemoryMB) + `; passes ${ours[0].passes.path} and ${ours[0].passes.cv}`,
+      ...(glmnet && ratio && cpu
+        ? [
+            row('glmnet', glmnet.path, glmnet.cv, glmnet.peakMemoryMB) + marked,
+            `  ratio    path ${ratio.path.toFixed(2)}, cross-validation ${ratio.cv?.toFixed(2) ?? '-'}; by processor time ${cpu.path.toFixed(2)} and ${cpu.cv?.toFixed(2) ?? '-'}`,
+            `  largest relative difference in deviance ${difference === null ? '-' : figure(difference)}`,
+          ]
+        : []),
+    ],
+  };
+}
+
+
+function cpuRatio(ours: readonly OurTimes[], theirs: readonly GlmnetTimes[]): number | null {
+  const times = theirs.flatMap(({ cv }) => (cv ? [cv.cpu] : []));
+  return times.length === 0 ? null : median(times) / median(ours.map(({ cv }) => cv.cpu));
+}
+
+function glmnetTimes(of: BenchCase, theirs: readonly GlmnetTimes[]): { path: Timed; cv: Timed | null; peakMemoryMB: number; cvExtrapolated?: true } {
+  const path = { seconds: median(theirs.map((one) => one.path.seconds)), residual: theirs[0].path.residual };
+  const peak = Math.max(...theirs.map((one) => one.peakMemoryMB));
+  const measured = theirs.flatMap(({ cv }) => (cv ? [cv] : []));
+  if (measured.length > 0) return { path, cv: { seconds: median(measured.map((cv) => cv.seconds)), residual: measured[0].residual }, peakMemoryMB: peak };
+  const basis = CASES.find(({ name }) => name === of.extrapolateFrom);
+  if (!basis) return { path, cv: null, peakMemoryMB: peak };
+  const known = results.find(({ json: { case: name } }) => name === basis.name)?.json['glmnet'] as { path: Timed; cv: Timed } | undefined;
+  const other = known ?? glmnetTimes(basis, [timeGlmnet(basis, benchSample(basis.rows, basis.columns, 20261201), 'cv')]);
+  const factor = (other.cv?.seconds ?? NaN) / other.path.seconds;
+  return { path, cv: { seconds: path.seconds * factor, residual: other.cv?.residual ?? NaN }, peakMemoryMB: peak, cvExtrapolated: true };
 }
 
 /** Over the lambdas both have. */
