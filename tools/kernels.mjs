@@ -18,7 +18,21 @@ export async function kernelModule() {
   const compile = async (...more) => {
     const written = new Map();
     const { error, stderr } = await asc.main(
-      ['kernels.assembly.ts', '--outFile', 'out.wasm', '-O3', '--runtime', 'stub', '--noAssert', '--importMemory', '--enable', 'simd', '--maximumMemory', '65536', ...more],
+      [
+        'kernels.assembly.ts',
+        '--outFile',
+        'out.wasm',
+        '-O3',
+        '--runtime',
+        'stub',
+        '--noAssert',
+        '--importMemory',
+        '--enable',
+        'simd',
+        '--maximumMemory',
+        '65536',
+        ...more,
+      ],
       {
         readFile: (name) => (fs.existsSync(path.join(folder, name)) ? fs.readFileSync(path.join(folder, name), 'utf8') : null),
         writeFile: (name, contents) => void written.set(name, contents),
@@ -28,7 +42,11 @@ export async function kernelModule() {
     if (error) throw new Error(stderr.toString() || error.message);
     return Buffer.from(written.get('out.wasm')).toString('base64');
   };
-  const lines = (text) => text.match(/.{1,120}/g).map((line) => `  '${line}',`).join('\n');
+  const lines = (text) =>
+    text
+      .match(/.{1,120}/g)
+      .map((line) => `  '${line}',`)
+      .join('\n');
   return [
     '/** Written by tools/kernels.mjs from kernels.assembly.ts: the kernels in WebAssembly, base64. Not to be edited. */',
     `export const KERNELS = [\n${lines(await compile())}\n].join('');`,

@@ -23,20 +23,56 @@ export interface Curvature {
 /** Keeps exactly collinear columns from making a set of coordinates singular; the exact gradient decides, so only speed is at stake. */
 const FAINT = 1e-7;
 
-/**
- * @param gram (m + 1) x (m + 1), the intercept first
- * @param factor by which the matrix is multiplied: total weight of all rows over that of the lane's
- */
-export function curvatureOf(gram: Float64Array, size: number, factor = 1): Curvature {
-  const width = size + 1;
-  const scaled = factor === 1 ? gram : gram.map((value) => value * factor);
+/** @param gram (m + 1) x (m + 1), the intercept first */
+export function curvatureOf(gram: Float64Array, size: number): Curvature {
   const hessian = new Float64Array(size * size);
+  eliminate(gram, size, hessian);
+  return { size, gram, hessian };
+}
+
+/** Takes the intercept out of a Gram matrix. */
+function eliminate(gram: Float64Array, size: number, hessian: Float64Array): void {
+  const width = size + 1;
   for (let a = 0; a < size; a++) {
-    const ratio = scaled[(a + 1) * width] / scaled[0];
-    for (let b = 0; b < size; b++) hessian[a * size + b] = scaled[(a + 1) * width + b + 1] - ratio * scaled[b + 1];
-    hessian[a * size + a] *= 1 + FAINT;
+    const row = (a + 1) * width;
+    const ratio = gram[row] / gram[0];
+    const to = a * size;
+    for (let b = 0; b < size; b++) hessian[to + b] = gram[row + b + 1] - ratio * gram[b + 1];
+    hessian[to + a] *= 1 + FAINT;
   }
-  return { size, gram: scaled, hessian };
+}
+
+/** Gram matrices by fold, and their sum. */
+export interface Grams {
+  readonly folds: readonly Float64Array[];
+  readonly total: Float64Array;
+}
+
+/** Room for the curvature of one lane, written again and again. */
+export class LaneCurvature {
+  private readonly gram: Float64Array;
+  private readonly hessian: Float64Array;
+
+  constructor(private readonly size: number) {
+    this.gram = new Float64Array((size + 1) * (size + 1));
+    this.hessian = new Float64Array(size * size);
+  }
+
+  /**
+   * Of all rows but those of a fold (-1 = of all).
+   * @param factor total weight of all rows over that of the lane's
+   */
+  take(grams: Grams, leftOut: number, factor: number): Curvature {
+    const { gram, hessian, size } = this;
+    const { total, folds } = grams;
+    if (leftOut < 0) for (let k = 0; k < gram.length; k++) gram[k] = total[k] * factor;
+    else {
+      const own = folds[leftOut];
+      for (let k = 0; k < gram.length; k++) gram[k] = (total[k] - own[k]) * factor;
+    }
+    eliminate(gram, size, hessian);
+    return { size, gram, hessian };
+  }
 }
 
 /**
@@ -44,7 +80,7 @@ export function curvatureOf(gram: Float64Array, size: number, factor = 1): Curva
  */
 export class CurvaturesAlong {
   private anchor: { place: number; large: Float64Array[]; small: Float64Array[] } | null = null;
-  private readonly kept = new Map<number, Float64Array[]>();
+  private readonly kept = new Map<number, Grams>();
 
   /** @param pointAt where the curvature of a place is taken */
   constructor(
@@ -54,7 +90,7 @@ export class CurvaturesAlong {
   ) {}
 
   /** Gram matrices by fold at a place. */
-  gramsAt(place: number): Float64Array[] {
+  gramsAt(place: number): Grams {
     const known = this.kept.get(place);
     if (known) return known;
     const { passes, standardisation, pointAt } = this;
@@ -76,18 +112,16 @@ export class CurvaturesAlong {
         for (let k = 0; k < gram.length; k++) gram[k] += anchor.large[fold][k] - anchor.small[fold][k];
       });
     }
-    this.kept.set(place, grams);
+    const found = withTotal(grams);
+    this.kept.set(place, found);
     for (const other of this.kept.keys()) if (other < place - KEPT) this.kept.delete(other);
-    return grams;
+    return found;
   }
 }
 
-/** Sum of some of the grams, without one: what a fold's training rows have. */
-export function sumOfGrams(grams: readonly Float64Array[], without: number): Float64Array {
-  const sum = new Float64Array(grams[0].length);
-  grams.forEach((gram, fold) => {
-    if (fold === without) return;
-    for (let k = 0; k < sum.length; k++) sum[k] += gram[k];
-  });
-  return sum;
+export function withTotal(folds: readonly Float64Array[]): Grams {
+  if (folds.length === 1) return { folds, total: folds[0] };
+  const total = new Float64Array(folds[0].length);
+  for (const gram of folds) for (let k = 0; k < total.length; k++) total[k] += gram[k];
+  return { folds, total };
 }

@@ -1,4 +1,12 @@
-import { crossValidate, fitFold, requireFolds, summarise, trainingOf, type CrossValidation, type CrossValidationOptions } from '../penalised/folds';
+import {
+  crossValidate,
+  fitFold,
+  requireFolds,
+  summarise,
+  trainingOf,
+  type CrossValidation,
+  type CrossValidationOptions,
+} from '../penalised/folds';
 import { withDuplicatesHeld } from '../penalised/duplicates';
 import { fitAt, fitPath, type FitOptions } from '../penalised/path';
 import type { Fit, FitProblem, Grid, Path } from '../penalised/problem';
@@ -58,7 +66,11 @@ function isSeparatedAlong(problem: FitProblem, weights: Float64Array | undefined
   return fitAt(small, 0, { tolerance: 1e-7 }).status === 'separation';
 }
 
-function engineOf(problem: FitProblem, choice: EngineChoice, more: { folds?: Uint8Array; counted?: boolean; columns?: CodedProblem['columns'] } = {}): Engine {
+function engineOf(
+  problem: FitProblem,
+  choice: EngineChoice,
+  more: { folds?: Uint8Array; counted?: boolean; columns?: CodedProblem['columns'] } = {},
+): Engine {
   const { columns = codedColumns(problem.columns), folds, counted } = more;
   const crew = choice.crewFor?.(problem.outcome.length * problem.columns.length);
   return new Engine({ ...problem, columns }, { folds, counted, crew });
@@ -100,7 +112,11 @@ export function fastPath(
 }
 
 /** As `fitAt`, by the engine where that is faster. */
-export function fastFit(stated: FitProblem, lambda: number, options: FitOptions & EngineChoice & { readonly start?: Fit } = {}): Fit & SolvedBy {
+export function fastFit(
+  stated: FitProblem,
+  lambda: number,
+  options: FitOptions & EngineChoice & { readonly start?: Fit } = {},
+): Fit & SolvedBy {
   requireProblem(stated);
   requireLambda(lambda);
   const problem = withDuplicatesHeld(stated);
@@ -127,14 +143,16 @@ export function fastCrossValidation(
   stated: FitProblem,
   folds: Uint8Array,
   lambdas: readonly number[],
-  options: Omit<CrossValidationOptions, 'onFoldFit'> & EngineChoice & { readonly path?: readonly Fit[]; readonly onProgress?: (share: number) => void } = {},
+  options: Omit<CrossValidationOptions, 'onFoldFit'> &
+    EngineChoice & { readonly path?: readonly Fit[]; readonly onProgress?: (share: number) => void } = {},
 ): CrossValidation & SolvedBy {
   const count = requireFolds(stated, folds, lambdas);
   const problem = withDuplicatesHeld(stated);
-  const slow = (reason: string): CrossValidation & SolvedBy => ({ ...crossValidate(problem, folds, lambdas, options), ...oracle(reason) });
-  const against =
-    reasonAgainst(problem, options) ??
-    (lambdas.some((lambda) => lambda === 0) ? 'a fit without penalty' : null);
+  const slow = (reason: string): CrossValidation & SolvedBy => ({
+    ...crossValidate(problem, folds, lambdas, options),
+    ...oracle(reason),
+  });
+  const against = reasonAgainst(problem, options) ?? (lambdas.some((lambda) => lambda === 0) ? 'a fit without penalty' : null);
   if (against) return slow(against);
   const values = new FoldValues(codedColumns(problem.columns));
   for (let fold = 1; fold <= count; fold++) {
@@ -166,11 +184,18 @@ export function fastCrossValidation(
 }
 
 /** As `resampleFits`, by the engine where that is faster and a residual of 1e-6 is enough. A resample that the engine gives up is fitted by the oracle. */
-export function fastResamples(stated: FitProblem, lambda: number, options: ResampleOptions & EngineChoice): { draws: Draw[] } & SolvedBy {
+export function fastResamples(
+  stated: FitProblem,
+  lambda: number,
+  options: ResampleOptions & EngineChoice,
+): { draws: Draw[] } & SolvedBy {
   requireProblem(stated);
   requireLambda(lambda);
   const problem = withDuplicatesHeld(stated);
-  const slow = (reason: string): { draws: Draw[] } & SolvedBy => ({ draws: resampleFits(problem, lambda, options), ...oracle(reason) });
+  const slow = (reason: string): { draws: Draw[] } & SolvedBy => ({
+    draws: resampleFits(problem, lambda, options),
+    ...oracle(reason),
+  });
   const { seed, first = 0, count, tolerance = SINGLES_REACH } = options;
   requireThat(Number.isSafeInteger(seed) && seed >= 0, 'seed', 'a seed is a whole number of at least 0.');
   requireThat(Number.isInteger(count) && count >= 1, 'count', 'the number of resamples is a whole number of at least 1.');
@@ -191,7 +216,10 @@ export function fastResamples(stated: FitProblem, lambda: number, options: Resam
       draws[resample - first] = converged
         ? { resample, intercept, coefficients, converged }
         : resampleFits(problem, lambda, { ...options, first: resample, count: 1, start, onResample: undefined })[0];
-      options.onResample?.(draws.reduce((done) => done + 1, 0), count);
+      options.onResample?.(
+        draws.reduce((done) => done + 1, 0),
+        count,
+      );
     });
     return { draws, solver: 'engine', reason: given > 0 ? `the oracle fitted ${given} resamples that the engine gave up` : null };
   });

@@ -13,7 +13,8 @@ import { fastCrossValidation, fastFit, fastPath, fastResamples } from './dispatc
 
 const ROWS = 6000;
 const automatic: Grid = { count: 40, smallestRatio: 1e-3, earlyStop: true };
-const foldsOf = (rows: number, count: number): Uint8Array => Uint8Array.from({ length: rows }, (_, i) => ((i * 7919) % count) + 1);
+const foldsOf = (rows: number, count: number): Uint8Array =>
+  Uint8Array.from({ length: rows }, (_, i) => ((i * 7919) % count) + 1);
 
 /** The problem with weights of 0 to 2, an offset, or a linear column where asked. */
 function problemWith(penalty: Penalty, more: { weights?: boolean; offset?: boolean; linear?: boolean } = {}): FitProblem {
@@ -130,7 +131,11 @@ describe('the engine fits again after a bin has changed', () => {
 });
 
 describe('the engine cross-validates as the oracle does', () => {
-  const check = (problem: FitProblem, folds: Uint8Array, columnsForFold?: (fold: number, training: Uint8Array) => Float64Array[]): void => {
+  const check = (
+    problem: FitProblem,
+    folds: Uint8Array,
+    columnsForFold?: (fold: number, training: Uint8Array) => Float64Array[],
+  ): void => {
     const { fits } = fitPath(problem, automatic);
     const lambdas = fits.map(({ lambda }) => lambda);
     const more = columnsForFold ? { columnsForFold } : {};
@@ -141,7 +146,11 @@ describe('the engine cross-validates as the oracle does', () => {
       expect([result.solver, result.reason]).toEqual(['engine', null]);
       expect(result.converged).toBe(true);
       expect(result.optimalityResidual).toBeLessThanOrEqual(1e-6);
-      expect([result.minimum, result.oneStandardError, result.atGridEnd]).toEqual([oracle.minimum, oracle.oneStandardError, oracle.atGridEnd]);
+      expect([result.minimum, result.oneStandardError, result.atGridEnd]).toEqual([
+        oracle.minimum,
+        oracle.oneStandardError,
+        oracle.atGridEnd,
+      ]);
       result.folds.forEach((fold, f) => {
         expect(fold.weight).toBeCloseTo(oracle.folds[f].weight, 9);
         fold.deviance.forEach((value, k) => expect(Math.abs(value - oracle.folds[f].deviance[k])).toBeLessThan(1e-6));
@@ -169,7 +178,9 @@ describe('the engine cross-validates as the oracle does', () => {
   it('columns from each training part', () => {
     const problem = problemWith(lasso);
     const folds = foldsOf(ROWS, 5);
-    check(problem, folds, (fold) => problem.columns.map((column, j) => column.map((value) => value + 0.02 * fold * Math.sin(j + 3 * value))));
+    check(problem, folds, (fold) =>
+      problem.columns.map((column, j) => column.map((value) => value + 0.02 * fold * Math.sin(j + 3 * value))),
+    );
   });
   it('bins that are equal in all rows and differ in a fold', () => {
     const problem = problemWith(lasso);

@@ -40,7 +40,11 @@ export interface EngineFolds {
   readonly onFold?: (done: number, count: number) => void;
   /** Share of the work done, after every pass. */
   readonly onProgress?: (share: number) => void;
-  readonly onFoldFit?: (fold: number, index: number, fit: { intercept: number; coefficients: Float64Array; optimalityResidual: number }) => void;
+  readonly onFoldFit?: (
+    fold: number,
+    index: number,
+    fit: { intercept: number; coefficients: Float64Array; optimalityResidual: number },
+  ) => void;
 }
 
 /** Folds that did not converge have no deviances: `null`. */
@@ -243,7 +247,10 @@ export class Engine {
   }
 
   /** As `fitAt`, started from a fit if there is one. */
-  fitAt(lambda: number, options: FitOptions & { readonly start?: { intercept: number; coefficients: ArrayLike<number> } } = {}): Fit {
+  fitAt(
+    lambda: number,
+    options: FitOptions & { readonly start?: { intercept: number; coefficients: ArrayLike<number> } } = {},
+  ): Fit {
     requireLambda(lambda);
     const tolerance = options.tolerance ?? 1e-9;
     let found: Solved | null = null;
@@ -307,7 +314,8 @@ export class Engine {
   /** All rows' solutions at the lambdas, with gradients: those of the last path, or found in singles. */
   private guideTo(lambdas: readonly number[]): readonly Point[] {
     const known = this.guide;
-    if (known && lambdas.length <= known.lambdas.length && lambdas.every((lambda, k) => lambda === known.lambdas[k])) return known.points;
+    if (known && lambdas.length <= known.lambdas.length && lambdas.every((lambda, k) => lambda === known.lambdas[k]))
+      return known.points;
     const points: Point[] = [];
     const approach = this.approach(lambdas[0]);
     const targets = [...approach, ...lambdas].map((lambda) => ({ lambda, tolerance: SINGLE_TOLERANCE }));
@@ -326,7 +334,8 @@ export class Engine {
   /** Takes fits of all rows that were found before as the guide of `crossValidate`. */
   followFits(fits: readonly Fit[]): void {
     const lanes = fits.map((fit): Lane => ({ point: this.pointFrom(fit), standardisation: this.full, leftOut: -1, heldOut: 0 }));
-    for (let first = 0; first < lanes.length; first += LANES_SINGLE) this.passes.run(lanes.slice(first, first + LANES_SINGLE), 'single');
+    for (let first = 0; first < lanes.length; first += LANES_SINGLE)
+      this.passes.run(lanes.slice(first, first + LANES_SINGLE), 'single');
     this.guide = { lambdas: fits.map(({ lambda }) => lambda), points: lanes.map(({ point }) => point) };
   }
 
@@ -348,7 +357,16 @@ export class Engine {
           ? fromTables(problem, layout, sums, (source) => own[source])
           : ownStandardisation(problem, layout, full, sums);
         deviances[fold] = new Float64Array(lambdas.length);
-        return { point: pointOf(size), standardisation, leftOut: fold, heldOut: 0, heldOutGradient: new Float64Array(size + 1), place: 0, passes: 0, failed: false };
+        return {
+          point: pointOf(size),
+          standardisation,
+          leftOut: fold,
+          heldOut: 0,
+          heldOutGradient: new Float64Array(size + 1),
+          place: 0,
+          passes: 0,
+          failed: false,
+        };
       });
       follow(this.passes, followers, {
         guide,
@@ -386,7 +404,13 @@ export class Engine {
   resample(
     lambdas: readonly number[],
     options: { readonly seed: number; readonly first?: number; readonly count: number; readonly tolerance?: number },
-    onDraw: (draw: { resample: number; place: number; intercept: number; coefficients: Float64Array; converged: boolean }) => void,
+    onDraw: (draw: {
+      resample: number;
+      place: number;
+      intercept: number;
+      coefficients: Float64Array;
+      converged: boolean;
+    }) => void,
   ): void {
     const { layout, problem, full, passes } = this;
     const guide = this.guideTo(lambdas);
@@ -422,7 +446,12 @@ export class Engine {
         return { point: pointOf(size), standardisation, leftOut: -1, heldOut: 0, place: 0, passes: 0, failed: false };
       });
       const report = (lane: number, place: number, converged: boolean): void =>
-        onDraw({ resample: from + lane, place, ...this.unscaled(followers[lane].point, followers[lane].standardisation), converged });
+        onDraw({
+          resample: from + lane,
+          place,
+          ...this.unscaled(followers[lane].point, followers[lane].standardisation),
+          converged,
+        });
       follow(passes, followers, {
         guide,
         full,
@@ -438,7 +467,14 @@ export class Engine {
   /** Residual of points on the scale of x in double precision: what a fit found otherwise is worth. */
   residualOf(lambda: number, fit: { intercept: number; coefficients: ArrayLike<number> }, leftOutFold = 0): number {
     const standardisation =
-      leftOutFold === 0 ? this.full : ownStandardisation(this.problem, this.layout, this.full, weightSums(this.layout, (f) => f !== leftOutFold - 1));
+      leftOutFold === 0
+        ? this.full
+        : ownStandardisation(
+            this.problem,
+            this.layout,
+            this.full,
+            weightSums(this.layout, (f) => f !== leftOutFold - 1),
+          );
     const lane: Lane = { point: this.pointFrom(fit), standardisation, leftOut: leftOutFold - 1, heldOut: 0 };
     this.passes.run([lane], 'double');
     return residualAt(lane.point, standardisation, lambda);

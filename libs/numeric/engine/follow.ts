@@ -1,4 +1,4 @@
-import { curvatureOf, CurvaturesAlong, sumOfGrams, type Curvature } from './curvature';
+import { CurvaturesAlong, LaneCurvature, withTotal, type Curvature } from './curvature';
 import { copyPoint, pointOf, residualAt, slopeAlong, type Lane, type Point } from './lane';
 import { LaneModel } from './lane-model';
 import type { Passes } from './passes';
@@ -32,6 +32,7 @@ const MOST_STALLED = 6;
 
 interface State {
   readonly model: LaneModel;
+  readonly room: LaneCurvature;
   /** Where the last step began, with its gradient. */
   readonly before: Point;
   /** The gradient that the model foretold for the end of the step, intercept first. */
@@ -58,6 +59,7 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
   const size = full.used.length;
   const states = followers.map((): State => ({
     model: new LaneModel(size),
+    room: new LaneCurvature(size),
     before: pointOf(size),
     foretold: new Float64Array(size + 1),
     missed: new Float64Array(size + 1),
@@ -79,18 +81,14 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
     const state = states[lane];
     if (state.curvature && state.curvatureAt === place) return state.curvature;
     state.curvatureAt = place;
-    return (state.curvature = curvatureOf(sumOfGrams(along.gramsAt(place), leftOut), size, wholeWeight / standardisation.totalWeight));
+    return (state.curvature = state.room.take(along.gramsAt(place), leftOut, wholeWeight / standardisation.totalWeight));
   };
 
   followers.forEach((follower) => copyPoint(guide[0], follower.point));
   while (true) {
     const riding = followers.flatMap((follower, lane) => (follower.failed || follower.place >= lambdas.length ? [] : [lane]));
     if (riding.length === 0) return;
-    passes.run(
-      options.counted ? followers : riding.map((lane) => followers[lane]),
-      'single',
-      options.counted,
-    );
+    passes.run(options.counted ? followers : riding.map((lane) => followers[lane]), 'single', options.counted);
     options.onPass?.();
     for (const lane of riding) {
       const follower = followers[lane];
@@ -101,11 +99,12 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
       if (!state.travelled && was < Infinity && state.residual > 0.5 * was && state.residual > tolerance) {
         state.stalled++;
         // Poor progress says that the curvature does not serve this lane: it gets one of its own point.
-        const own = passes.gram(follower.point, follower.standardisation);
-        state.curvature = curvatureOf(sumOfGrams(own, follower.leftOut), size, wholeWeight / follower.standardisation.totalWeight);
+        const own = withTotal(passes.gram(follower.point, follower.standardisation));
+        state.curvature = state.room.take(own, follower.leftOut, wholeWeight / follower.standardisation.totalWeight);
         state.curvatureAt = follower.place;
       }
-      if (!Number.isFinite(state.residual) || follower.passes > MOST_PASSES || state.stalled > MOST_STALLED) follower.failed = true;
+      if (!Number.isFinite(state.residual) || follower.passes > MOST_PASSES || state.stalled > MOST_STALLED)
+        follower.failed = true;
     }
     for (const lane of riding) {
       if (followers[lane].failed) continue;

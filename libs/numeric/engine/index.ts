@@ -1,12 +1,11 @@
 export { codedColumns, type CodedColumn, type CodedProblem, type EngineColumn, type LinearColumn } from './coded-columns';
 export { Alone, Team, help, type Crew, type HelpOrder } from './crew';
+export { ENGINE_ROWS, fastCrossValidation, fastFit, fastPath, fastResamples, type EngineChoice, type SolvedBy } from './dispatch';
 export {
-  ENGINE_ROWS,
-  fastCrossValidation,
-  fastFit,
-  fastPath,
-  fastResamples,
-  type EngineChoice,
-  type SolvedBy,
-} from './dispatch';
-export { Engine, PATH_TOLERANCE, summariseFolds, type EngineCrossValidation, type EngineFolds, type EngineOptions } from './engine';
+  Engine,
+  PATH_TOLERANCE,
+  summariseFolds,
+  type EngineCrossValidation,
+  type EngineFolds,
+  type EngineOptions,
+} from './engine';

@@ -44,8 +44,7 @@ export function residualAt(point: Point, s: Standardisation, lambda: number): nu
     if (s.used[j] === 0) continue;
     const gradient = point.gradient[j] + (s.centre[j] / s.scale[j]) * g0;
     const amount =
-      violation(point.t[j], gradient, lambda * s.absolute[j], lambda * s.square[j], s.lower[j], s.upper[j]) *
-      s.reporting[j];
+      violation(point.t[j], gradient, lambda * s.absolute[j], lambda * s.square[j], s.lower[j], s.upper[j]) * s.reporting[j];
     if (!(amount <= largest)) largest = amount;
   }
   return largest;

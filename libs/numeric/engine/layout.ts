@@ -250,7 +250,21 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
   chunks.forEach((chunk, c) => i32.set([chunk.first, chunk.blocks], (at.chunkTable >> 2) + c * 2));
   units.forEach((unit, u) => i32.set([unit.first, unit.blocks, unit.step], (at.gramUnits >> 2) + u * 3));
 
-  const binWeights = layOutCodes(problem, { packs, codedPlaces, internal, bins, order, slots, blocks, foldCount, u8, i32, at, kept, earlier });
+  const binWeights = layOutCodes(problem, {
+    packs,
+    codedPlaces,
+    internal,
+    bins,
+    order,
+    slots,
+    blocks,
+    foldCount,
+    u8,
+    i32,
+    at,
+    kept,
+    earlier,
+  });
 
   const moments = layOutLinear(problem, { linearPlaces, order, slots, blocks, foldCount, f32, f64, at });
   return {

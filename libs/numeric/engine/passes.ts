@@ -231,7 +231,11 @@ export class Passes {
    * Weighted Gram matrices of (1, columns) per fold at a point, of a sample of the rows scaled up, by total weight of all rows.
    * @returns folds x (columns + 1)^2, symmetric
    */
-  gram(point: { intercept: number; t: Float64Array }, standardisation: Standardisation, sample: Sample = 'large'): Float64Array[] {
+  gram(
+    point: { intercept: number; t: Float64Array },
+    standardisation: Standardisation,
+    sample: Sample = 'large',
+  ): Float64Array[] {
     const { layout, i32, f32, f64 } = this;
     const { at, bins, columns, coded, linear, packs, folds, gramSize } = layout;
     const { first, units } = layout.gramUnits[sample];

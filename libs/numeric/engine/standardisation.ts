@@ -51,7 +51,12 @@ export function weightSums(layout: Layout, takes: (fold: number) => boolean): We
 
 /** The standardisation of all rows, by which tables and curvature are made. */
 export function fullStandardisation(problem: CodedProblem, layout: Layout): Standardisation {
-  return fromTables(problem, layout, weightSums(layout, () => true), (source) => problem.columns[source].values);
+  return fromTables(
+    problem,
+    layout,
+    weightSums(layout, () => true),
+    (source) => problem.columns[source].values,
+  );
 }
 
 /**
@@ -86,7 +91,12 @@ export function fromTables(
 }
 
 /** The lane's view of `full`: the same tables and curvature, its own deviations. */
-export function ownStandardisation(problem: CodedProblem, layout: Layout, full: Standardisation, sums: WeightSums): Standardisation {
+export function ownStandardisation(
+  problem: CodedProblem,
+  layout: Layout,
+  full: Standardisation,
+  sums: WeightSums,
+): Standardisation {
   const own = withPenalty(problem.penalty, layout, full.scale, ownDeviations(layout, full.values, full.scale, sums));
   return { ...full, ...own, totalWeight: sums.total };
 }

@@ -1,4 +1,4 @@
-import { curvatureOf, sumOfGrams, type Curvature } from './curvature';
+import { curvatureOf, withTotal, type Curvature } from './curvature';
 import { copyPoint, penaltyAt, pointOf, residualAt, slopeAlong, type Lane, type Point } from './lane';
 import { LaneModel } from './lane-model';
 import { lanesOf, type Passes, type Precision } from './passes';
@@ -69,7 +69,7 @@ export function solvePath(passes: Passes, start: Point | null, targets: readonly
   let latest: Point | null = start;
   const refresh = (point: Point, place: number): void => {
     curvatureAt = place;
-    curvature = curvatureOf(sumOfGrams(passes.gram(point, s, 'small'), -1), size);
+    curvature = curvatureOf(withTotal(passes.gram(point, s, 'small')).total, size);
   };
   /** The curvature near a place: taken anew only once the lanes have moved on, in the middle of those that have a point yet. */
   const near = (place: number): Curvature => {

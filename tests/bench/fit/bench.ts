@@ -18,7 +18,8 @@ const option = (name: string): string | undefined => (args.includes(name) ? args
 const json = args.includes('--json');
 const alone = args.includes('--alone');
 const chosen = CASES.filter(({ name }) => (option('--case') ?? name) === name);
-if (chosen.length === 0) throw new Error(`There is no case ${option('--case')}; there are ${CASES.map(({ name }) => name).join(', ')}.`);
+if (chosen.length === 0)
+  throw new Error(`There is no case ${option('--case')}; there are ${CASES.map(({ name }) => name).join(', ')}.`);
 const threads = Number(option('--threads') ?? 2);
 const crew = (cells: number) => (threads > 1 ? crewFor(cells) : new Alone());
 if (threads > 1) {
@@ -57,12 +58,24 @@ function measureOther(of: BenchCase, sample: BenchSample): BenchResult {
   const measure = of.kind === 'bootstrap' ? timeBootstrap : timeRefit;
   measure(of, sample, () => crew(of.rows * of.columns));
   const times = Array.from({ length: of.rounds }, () => measure(of, sample, () => crew(of.rows * of.columns)));
-  const timed = { seconds: median(times.map(({ seconds }) => seconds)), residual: Math.max(...times.map(({ residual }) => residual)) };
+  const timed = {
+    seconds: median(times.map(({ seconds }) => seconds)),
+    residual: Math.max(...times.map(({ residual }) => residual)),
+  };
   const peak = peakMemoryMB();
   const what = of.kind === 'bootstrap' ? '200 resamples at 20 penalties' : 'one penalty again after a changed bin, warm';
   return {
-    json: { case: of.name, rows: of.rows, columns: of.columns, ours: { [of.kind]: timed, peakMemoryMB: peak }, glmnet: null, ratio: null },
-    lines: [`${of.name}: ${of.rows} x ${of.columns}, ${what}: ${seconds(timed.seconds)}, residual ${figure(timed.residual)}, ${peak.toFixed(0)} MB`],
+    json: {
+      case: of.name,
+      rows: of.rows,
+      columns: of.columns,
+      ours: { [of.kind]: timed, peakMemoryMB: peak },
+      glmnet: null,
+      ratio: null,
+    },
+    lines: [
+      `${of.name}: ${of.rows} x ${of.columns}, ${what}: ${seconds(timed.seconds)}, residual ${figure(timed.residual)}, ${peak.toFixed(0)} MB`,
+    ],
   };
 }
 
@@ -82,7 +95,9 @@ function measurePath(of: BenchCase, sample: BenchSample): BenchResult {
     peakMemoryMB: memory,
   };
   const glmnet = theirs.length > 0 ? glmnetTimes(of, theirs) : null;
-  const ratio = glmnet ? { path: glmnet.path.seconds / own.path.seconds, cv: glmnet.cv ? glmnet.cv.seconds / own.cv.seconds : null } : null;
+  const ratio = glmnet
+    ? { path: glmnet.path.seconds / own.path.seconds, cv: glmnet.cv ? glmnet.cv.seconds / own.cv.seconds : null }
+    : null;
   const cpu = glmnet
     ? { path: median(theirs.map(({ path }) => path.cpu)) / median(ours.map(({ path }) => path.cpu)), cv: cpuRatio(ours, theirs) }
     : null;
@@ -106,23 +121,36 @@ function measurePath(of: BenchCase, sample: BenchSample): BenchResult {
   };
 }
 
-
 function cpuRatio(ours: readonly OurTimes[], theirs: readonly GlmnetTimes[]): number | null {
   const times = theirs.flatMap(({ cv }) => (cv ? [cv.cpu] : []));
   return times.length === 0 ? null : median(times) / median(ours.map(({ cv }) => cv.cpu));
 }
 
-function glmnetTimes(of: BenchCase, theirs: readonly GlmnetTimes[]): { path: Timed; cv: Timed | null; peakMemoryMB: number; cvExtrapolated?: true } {
+function glmnetTimes(
+  of: BenchCase,
+  theirs: readonly GlmnetTimes[],
+): { path: Timed; cv: Timed | null; peakMemoryMB: number; cvExtrapolated?: true } {
   const path = { seconds: median(theirs.map((one) => one.path.seconds)), residual: theirs[0].path.residual };
   const peak = Math.max(...theirs.map((one) => one.peakMemoryMB));
   const measured = theirs.flatMap(({ cv }) => (cv ? [cv] : []));
-  if (measured.length > 0) return { path, cv: { seconds: median(measured.map((cv) => cv.seconds)), residual: measured[0].residual }, peakMemoryMB: peak };
+  if (measured.length > 0)
+    return {
+      path,
+      cv: { seconds: median(measured.map((cv) => cv.seconds)), residual: measured[0].residual },
+      peakMemoryMB: peak,
+    };
   const basis = CASES.find(({ name }) => name === of.extrapolateFrom);
   if (!basis) return { path, cv: null, peakMemoryMB: peak };
-  const known = results.find(({ json: { case: name } }) => name === basis.name)?.json['glmnet'] as { path: Timed; cv: Timed } | undefined;
+  const known = results.find(({ json: { case: name } }) => name === basis.name)?.json['glmnet'] as
+    { path: Timed; cv: Timed } | undefined;
   const other = known ?? glmnetTimes(basis, [timeGlmnet(basis, benchSample(basis.rows, basis.columns, 20261201), 'cv')]);
   const factor = (other.cv?.seconds ?? NaN) / other.path.seconds;
-  return { path, cv: { seconds: path.seconds * factor, residual: other.cv?.residual ?? NaN }, peakMemoryMB: peak, cvExtrapolated: true };
+  return {
+    path,
+    cv: { seconds: path.seconds * factor, residual: other.cv?.residual ?? NaN },
+    peakMemoryMB: peak,
+    cvExtrapolated: true,
+  };
 }
 
 /** Over the lambdas both have. */

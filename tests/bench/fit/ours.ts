@@ -43,7 +43,11 @@ export function timeOurs(of: BenchCase, sample: BenchSample, crew: () => Crew): 
   const cpuBegan = cpu();
   const alone = new Engine(problem, { crew: crew() });
   const { fits } = alone.path(GRID);
-  const path = { seconds: now() - began, cpu: cpu() - cpuBegan, residual: Math.max(...fits.map((fit) => fit.optimalityResidual)) };
+  const path = {
+    seconds: now() - began,
+    cpu: cpu() - cpuBegan,
+    residual: Math.max(...fits.map((fit) => fit.optimalityResidual)),
+  };
   const pathPasses = alone.passes.count;
   alone.close();
 
@@ -57,7 +61,9 @@ export function timeOurs(of: BenchCase, sample: BenchSample, crew: () => Crew): 
   let seen = 0;
   const validated = summariseFolds(
     lambdas,
-    engine.crossValidate(lambdas, { onFoldFit: (fold, index, fit) => void (seen++ % every === 0 && found.push({ fold, lambda: lambdas[index], fit })) }),
+    engine.crossValidate(lambdas, {
+      onFoldFit: (fold, index, fit) => void (seen++ % every === 0 && found.push({ fold, lambda: lambdas[index], fit })),
+    }),
   );
   if (!validated) throw new Error('A fold did not converge.');
   for (const index of [validated.minimum, validated.oneStandardError]) {
@@ -90,7 +96,10 @@ export function timeBootstrap(of: BenchCase, sample: BenchSample, crew: () => Cr
   const residual = Math.max(
     ...found.map(({ resample, place, fit }) => {
       const weights = Float64Array.from(stratifiedBootstrap(sample.outcome, 1, resample));
-      return optimalityResidual({ columns, outcome: sample.outcome, weights, penalty: problem.penalty }, { ...fit, lambda: lambdas[place] });
+      return optimalityResidual(
+        { columns, outcome: sample.outcome, weights, penalty: problem.penalty },
+        { ...fit, lambda: lambdas[place] },
+      );
     }),
   );
   return { seconds, residual };

@@ -41,7 +41,10 @@ export function benchSample(rows: number, columns: number, seed: number, bad = 0
     const cuts = CUTS[bins];
     const spread = 0.3 + 0.6 * chance.uniform();
     // Weights of evidence: rising with the bins, not quite evenly.
-    const values = Float64Array.from({ length: bins }, (_, b) => spread * ((b - (bins - 1) / 2) / (bins / 3) + 0.2 * (chance.uniform() - 0.5)));
+    const values = Float64Array.from(
+      { length: bins },
+      (_, b) => spread * ((b - (bins - 1) / 2) / (bins / 3) + 0.2 * (chance.uniform() - 0.5)),
+    );
     // Every other column has no effect.
     const slope = j % 2 === 0 ? (0.4 + 0.8 * chance.uniform()) * Math.sqrt(10 / useful) : 0;
     const codes = new Uint8Array(rows);

@@ -8,7 +8,7 @@
  */
 export const CONSTANTS_SINGLE: readonly number[] = [
   // 1/ln 2, the number that rounds what it is added to; the powers of 2^f from the fifth down
-  1.44269504088896341, 12582912,
+  1.4426950408889634, 12582912,
   0.001326469985, 0.009671533908, 0.05550734001, 0.2402224176, 0.6931469774, 1,
   // one
   1,

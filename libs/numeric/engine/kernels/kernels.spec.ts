@@ -80,7 +80,8 @@ describe('exp and log by basic operations', () => {
 
   it('single precision: within a few units of the last place', () => {
     // The polynomial's 9e-8, half a unit (6e-8) each for a few roundings, and the argument's own rounding times its size.
-    for (const x of grid(-20, 20).map(Math.fround)) expect(Math.abs(exp32(x) / Math.exp(x) - 1)).toBeLessThan(3e-7 + 6e-8 * Math.abs(x));
+    for (const x of grid(-20, 20).map(Math.fround))
+      expect(Math.abs(exp32(x) / Math.exp(x) - 1)).toBeLessThan(3e-7 + 6e-8 * Math.abs(x));
     for (const m of grid(-20, 20).map(Math.fround)) {
       const wanted = Math.log1p(Math.exp(-Math.abs(m))) + Math.max(0, -m);
       expect(Math.abs(loss32(m, exp32(m)) / wanted - 1)).toBeLessThan(3e-7 + 6e-8 * Math.abs(m));

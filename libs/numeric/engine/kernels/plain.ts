@@ -75,9 +75,7 @@ export function plainKernels(buffer: ArrayBufferLike): Kernels {
         for (let l = 0; l < lanes; l++) {
           const first = f32[at(0, i) + l];
           const sum =
-            together === 1
-              ? first
-              : fround(fround(first + f32[at(1, i) + l]) + fround(f32[at(2, i) + l] + f32[at(3, i) + l]));
+            together === 1 ? first : fround(fround(first + f32[at(1, i) + l]) + fround(f32[at(2, i) + l] + f32[at(3, i) + l]));
           f32[eta + i * lanes + l] += sum;
         }
       }
@@ -231,8 +229,7 @@ export function plainKernels(buffer: ArrayBufferLike): Kernels {
     const slopes = word(description, LINEAR_SLOPES) >> 3;
     for (let j = 0; j < linear; j++) {
       for (let i = 0; i < rows; i++) {
-        for (let l = 0; l < lanes; l++)
-          f64[eta + i * lanes + l] += f64[values + j * BLOCK + i] * f64[slopes + j * lanes + l];
+        for (let l = 0; l < lanes; l++) f64[eta + i * lanes + l] += f64[values + j * BLOCK + i] * f64[slopes + j * lanes + l];
       }
     }
     const signed = (word(description, SIGNED_WEIGHTS) >> 3) + block * BLOCK;
