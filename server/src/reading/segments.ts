@@ -1,14 +1,14 @@
 import { createHash } from 'node:crypto';
 import { ColumnBuilder, detached } from './dictionary';
-import { byteOrderMark, decoderOf, ENCODING_NAMES, signatureProblem } from './encodings';
+import { decoderOf } from './encodings';
 import { headerProblems } from './header';
+import { openFile, openingBytes } from './opening';
 import { ProblemBook } from './problem-book';
 import { Scanner, type RecordSink } from './scanner';
 import type { FileFacts, ReadingChoices, ReadingOptions, ReadingProblem, Segment } from './types';
 
 /** Pieces of a large chunk are decoded one at a time, so that no string is ever longer than this many bytes. */
 const PIECE = 1 << 20;
-const SIGNATURE = 4096;
 
 export interface SegmentedFile {
   /** Segments in order. None comes any more once there is a problem. */
@@ -63,19 +63,6 @@ async function* read(
     for (let from = 0; from < chunk.length; from += PIECE)
       yield decoder.decode(chunk.subarray(from, from + PIECE), scanner.line, onFault);
   };
-  const opening = (bytes: Buffer): Buffer | ReadingProblem => {
-    const problem = signatureProblem(bytes);
-    if (problem !== null) return problem;
-    const mark = byteOrderMark(bytes);
-    if (mark === null) return bytes;
-    if (mark.encoding === reading.encoding) return bytes.subarray(mark.length);
-    return {
-      code: 'wrong-encoding',
-      message: `The file says it is ${ENCODING_NAMES[mark.encoding]}, not ${ENCODING_NAMES[reading.encoding]}.`,
-      where: { line: 1 },
-    };
-  };
-
   for await (const incoming of stream) {
     options.signal?.throwIfAborted();
     let chunk = Buffer.isBuffer(incoming) ? incoming : Buffer.from(incoming.buffer, incoming.byteOffset, incoming.byteLength);
@@ -83,8 +70,8 @@ async function* read(
     facts.bytes += chunk.length;
     if (first !== null) {
       first = Buffer.concat([first, chunk]);
-      if (first.length < SIGNATURE) continue;
-      const opened = opening(first);
+      if (first.length < openingBytes) continue;
+      const opened = openFile(first, reading.encoding);
       first = null;
       if (!Buffer.isBuffer(opened)) return giveUp(opened);
       chunk = opened;
@@ -98,7 +85,7 @@ async function* read(
   }
   options.signal?.throwIfAborted();
   if (first !== null) {
-    const opened = opening(first);
+    const opened = openFile(first, reading.encoding);
     if (!Buffer.isBuffer(opened)) return giveUp(opened);
     for (const text of pieces(opened)) scanner.push(text);
   }

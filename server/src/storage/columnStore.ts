@@ -10,18 +10,34 @@ export const segmentRows = 65_536;
 const columnsPerStatement = 50;
 
 /** Stores one segment of every column. `segment` counts from 0. */
-export async function storeSegment(
+export function storeSegment(
   sequelize: Sequelize,
   readingId: string,
   segment: number,
   columns: readonly { readonly position: number; readonly values: TextSegment }[],
   tx: Transaction | null = null,
 ): Promise<void> {
+  const contents = columns.map(({ position, values }) => ({
+    position,
+    rows: values.codes.length,
+    content: encodeSegment(values),
+  }));
+  return storeContents(sequelize, readingId, segment, contents, tx);
+}
+
+/** Stores one segment of every column that has been coded already, in whichever form. */
+export async function storeContents(
+  sequelize: Sequelize,
+  readingId: string,
+  segment: number,
+  columns: readonly { readonly position: number; readonly rows: number; readonly content: Buffer }[],
+  tx: Transaction | null = null,
+): Promise<void> {
   for (let from = 0; from < columns.length; from += columnsPerStatement) {
     const part = columns.slice(from, from + columnsPerStatement);
     const values: unknown[] = [readingId, segment];
-    const tuples = part.map(({ position, values: column }) => {
-      values.push(position, column.codes.length, encodeSegment(column));
+    const tuples = part.map((column) => {
+      values.push(column.position, column.rows, column.content);
       return `($1::uuid, $${values.length - 2}::int, $2::int, $${values.length - 1}::int, $${values.length}::bytea)`;
     });
     await sequelize.query(

@@ -34,7 +34,8 @@ export async function openChunk(key: Buffer, fileId: string, sequence: number, c
   decipher.setAAD(place(fileId, sequence));
   decipher.setAuthTag(content.subarray(nonceBytes, nonceBytes + tagBytes));
   const opened = Buffer.concat([decipher.update(content.subarray(nonceBytes + tagBytes)), decipher.final()]);
-  return expand(opened);
+  // In one piece: many small ones would have to be copied together.
+  return expand(opened, { chunkSize: chunkBytes });
 }
 
 /** Appends one chunk; the caller moves the file's offset in the same transaction. */
@@ -49,22 +50,38 @@ export async function storeChunk(
   });
 }
 
-/** The chunks of a file in order, opened, one in memory at a time. */
+/** Chunks that are fetched and opened while the one before them is used. */
+const chunksAhead = 2;
+
+/** The chunks of a file in order, opened, a few in memory at a time. */
 export async function* readChunks(
   sequelize: Sequelize,
   key: Buffer,
   fileId: string,
   signal?: AbortSignal,
 ): AsyncGenerator<Buffer> {
-  for (let sequence = 0; ; sequence++) {
-    signal?.throwIfAborted();
+  const fetch = async (sequence: number): Promise<Buffer | null> => {
     const [found] = await rows<{ content: Buffer }>(
       sequelize,
       'SELECT content FROM raw_chunks WHERE file_id = $1 AND sequence = $2',
       [fileId, sequence],
     );
-    if (!found) return;
-    yield await openChunk(key, fileId, sequence, found.content);
+    return found ? openChunk(key, fileId, sequence, found.content) : null;
+  };
+  const coming: Promise<Buffer | null>[] = [];
+  const ask = (sequence: number): void => {
+    const chunk = fetch(sequence);
+    // Heard where it is awaited; a reader that stops before has no use for it.
+    chunk.catch(() => undefined);
+    coming.push(chunk);
+  };
+  for (let sequence = 0; sequence < chunksAhead; sequence++) ask(sequence);
+  for (let sequence = chunksAhead; ; sequence++) {
+    signal?.throwIfAborted();
+    const chunk = await coming.shift();
+    if (!chunk) return;
+    ask(sequence);
+    yield chunk;
   }
 }
 

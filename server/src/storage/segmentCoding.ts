@@ -1,4 +1,5 @@
 import { constants, deflateRawSync, inflateRawSync } from 'node:zlib';
+import { packedForm, textsOfUnpacked, unpack } from './packedSegment';
 
 /**
  * One segment of a column, up to 65,536 texts, as bytes. Distinct texts form a dictionary and each row holds the narrowest index into it. A
@@ -102,8 +103,16 @@ export function encodeSegment(segment: TextSegment): Buffer {
   return deflateRawSync(Buffer.concat([writer.done(), indexes]), { level: 4, strategy: constants.Z_DEFAULT_STRATEGY });
 }
 
-export function decodeSegment(content: Buffer): TextSegment {
-  const bytes = inflateRawSync(content);
+/** Of either form: this one, or that of packedSegment.ts. */
+export function decodeSegment(content: Uint8Array): TextSegment {
+  const bytes = inflateSegment(content);
+  return bytes[0] === packedForm ? textsOfUnpacked(unpack(bytes)) : decodeTexts(bytes);
+}
+
+/** The bytes of a stored segment; the first is its form. */
+export const inflateSegment = (content: Uint8Array): Buffer => inflateRawSync(content, { chunkSize: 1 << 18 });
+
+function decodeTexts(bytes: Buffer): TextSegment {
   let at = 0;
   const varint = (): number => {
     let value = 0;

@@ -1,5 +1,6 @@
 import { classColumn, reclassFine, splitColumn } from '../classing/class-column';
 import { buildScorecard } from './build-scorecard';
+import { codeSegment } from './code-segment';
 import { compareFits } from './compare-fits';
 import { fitPenaltyPath } from './fit-path';
 import { freezeVersion } from './freeze-version';
@@ -19,6 +20,7 @@ export const tasks = {
   'fit.path': fitPenaltyPath,
   'password.hash': hashPassword,
   'password.verify': verifyPassword,
+  'sample.code': codeSegment,
   'sample.prepare': prepareSample,
   'scorecard.build': buildScorecard,
   'version.freeze': freezeVersion,

@@ -2,7 +2,7 @@ import type { ColumnList, ColumnProfile } from '@tallystone/contracts/samples/co
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
 import type { FoundSample } from './find-sample';
-import { thin } from './profile/kind';
+import { thin } from '../../profiling/kind';
 
 /** Profiles of the columns of a sample that has been read, in the order of the file. */
 export async function profilesOf(

@@ -9,7 +9,7 @@ import type {
 } from '@tallystone/contracts/samples/definition';
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
 import type { Exclusion, Partition } from '@tallystone/contracts/specification/types';
-import { thin } from './profile/kind';
+import { thin } from '../../profiling/kind';
 
 export interface DefinedSample {
   readonly sha256: string;

@@ -4,7 +4,7 @@ import type { DefinedColumn, DraftContent } from '@tallystone/contracts/samples/
 import type { Transaction } from 'sequelize';
 import type { Context } from '../../context';
 import { rows } from '../../database/sql';
-import { proposeOutcome } from './profile/guess-outcome';
+import { proposeOutcome } from '../../profiling/guess-outcome';
 
 /** The draft that a person finds after reading: every suggestion filled in, nothing confirmed. */
 export function firstDraft(profiles: readonly ColumnProfile[]): DraftContent {

@@ -6,7 +6,7 @@ import { judgeFormat, numberReader, readSegments, sniff } from '../../reading/in
 import { readChunks } from '../../storage/rawFiles';
 import type { FoundSample } from './find-sample';
 import { problemItem } from './problem-item';
-import { type Counted, judgeKind, thin } from './profile/kind';
+import { type Counted, judgeKind, thin } from '../../profiling/kind';
 
 /** How much of a file is looked at before a person decides: its first chunk, and of that at most this many bytes. */
 const lookedBytes = 2 * 1024 * 1024;

@@ -1,25 +1,26 @@
 import { randomUUID } from 'node:crypto';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
-import { fileLimits } from '@tallystone/contracts/samples/schema';
 import type { Transaction } from 'sequelize';
 import { deriveKey } from '../../config/keys';
 import type { Context } from '../../context';
 import { rows } from '../../database/sql';
 import { Sample } from '../../models/sample';
 import { Problem } from '../../problems/problem';
-import { type ColumnSegment, type ReadingProblem, numberReader, readSegments } from '../../reading/index';
-import { readStoredColumn, segmentRows, storeSegment } from '../../storage/columnStore';
-import { readRawFile } from '../../storage/rawFiles';
+import { type ReadingProblem, numberReader } from '../../reading/index';
+import { NotPlain } from '../../reading/plain/field-index';
+import { readStoredColumn } from '../../storage/columnStore';
 import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
 import { writeFirstDraft } from './first-draft';
 import { problemItem } from './problem-item';
-import { DuplicateRows } from './profile/duplicates';
-import { guessOutcome } from './profile/guess-outcome';
-import { suspectLeakage } from './profile/leakage';
-import { type Personal, hashText, personalColumn } from './profile/personal';
-import { profileColumn } from './profile/profile-column';
+import { guessOutcome } from '../../profiling/guess-outcome';
+import { suspectLeakage } from '../../profiling/leakage';
+import type { Personal } from '../../profiling/personal';
+import { profileColumn } from '../../profiling/profile-column';
+import { missingIn, readCarefully } from './read-carefully';
+import { readPlainly } from './read-plainly';
+import type { ReadRows, Reading } from './read-rows';
 
 /** What reading needs of the run that does it; tests and the demo give their own. */
 export interface ReadingRun {
@@ -36,56 +37,24 @@ export interface ReadingRun {
 const readingShare = 0.7;
 
 /**
- * Reads a raw file once, segment by segment, and keeps it by column: texts coded, what identifies people as keyed hashes, a profile per
- * column. Memory holds one segment and one column. Nothing of it counts before the end, where one transaction points the sample at it.
+ * Reads a raw file segment by segment and keeps it by column: texts coded, what identifies people as keyed hashes, a profile per column. Memory
+ * holds a few segments and one column. A file in which anything is unusual is read again from its beginning by the careful reader. Nothing of
+ * it counts before the end, where one transaction points the sample at it.
  *
  * @throws Problem 422 `file-refused` when the file has problems; all of them are then with the sample
  */
 export async function readFile(sampleId: string, choices: ReadingChoices, run: ReadingRun): Promise<void> {
-  const { context, signal } = run;
-  const { sequelize } = context;
+  const { context } = run;
   const sample = await Sample.findByPk(sampleId, { rejectOnEmpty: true });
   const size = Number(sample.size);
-  const readingId = randomUUID();
-  await run.write(async (tx) => {
-    await dropReadings(context, tx, sampleId, null);
-    await rows(
-      sequelize,
-      'INSERT INTO sample_readings (id, sample_id, run_id, attempt) VALUES ($1, $2, $3, $4) RETURNING id',
-      [readingId, sampleId, run.run.id, run.attempt],
-      tx,
-    );
-  });
-
-  run.progress('reading', 0);
-  const file = readSegments(readRawFile(sequelize, context.config.keys.rawFiles.subarray(0, 32), sampleId, signal), choices, {
-    mostRows: fileLimits.rows,
-    mostColumns: fileLimits.columns,
-    mostCharacters: fileLimits.cellBytes,
-    segmentRows,
-    signal,
-    onProgress: ({ bytes }) => run.progress('reading', (readingShare * bytes) / size),
-  });
-  const key = deriveKey(context.config.keys.identifiers, 'sample columns');
-  const isMissing = missingIn(choices);
-  const duplicates = new DuplicateRows();
-  let personal: (Personal | null)[] = [];
-  let segment = 0;
-  for await (const part of file.segments) {
-    signal.throwIfAborted();
-    if (segment === 0)
-      personal = part.columns.map((column, position) => judgePersonal(file.facts().header[position], column, isMissing));
-    duplicates.add(part.columns, part.rows);
-    const columns = part.columns.map((values, position) => ({
-      position,
-      values: personal[position]
-        ? { codes: values.codes, texts: values.texts.map((text) => (isMissing(text) ? text : hashText(key, text))) }
-        : values,
-    }));
-    await run.write((tx) => storeSegment(sequelize, readingId, segment, columns, tx));
-    segment++;
-  }
-  const facts = file.facts();
+  const reading: Reading = {
+    run,
+    sampleId,
+    choices,
+    key: deriveKey(context.config.keys.identifiers, 'sample columns'),
+    progress: (bytes) => run.progress('reading', (readingShare * bytes) / size),
+  };
+  const { readingId, facts, personal, duplicateRows } = await readRows(reading);
   if (facts.problems.length > 0) await refuseFile(run, sampleId, choices, facts.problems);
   if (facts.sha256 !== sample.sha256)
     throw new Error(`The stored file of sample ${sampleId} has another fingerprint than the one that arrived`);
@@ -100,7 +69,7 @@ export async function readFile(sampleId: string, choices: ReadingChoices, run: R
         readingId,
         rows: facts.rows,
         columns: facts.header.length,
-        duplicateRows: duplicates.count(),
+        duplicateRows,
         problems: [],
       },
       { where: { id: sampleId }, transaction: tx },
@@ -119,6 +88,35 @@ export async function readFile(sampleId: string, choices: ReadingChoices, run: R
   });
 }
 
+async function readRows(reading: Reading): Promise<ReadRows & { readingId: string }> {
+  const { context } = reading.run;
+  try {
+    const readingId = await beginReading(reading);
+    return { readingId, ...(await readPlainly(reading, readingId)) };
+  } catch (thrown) {
+    if (!(thrown instanceof NotPlain)) throw thrown;
+    context.log.info({ sampleId: reading.sampleId, why: thrown.message }, 'file is read carefully');
+  }
+  const readingId = await beginReading(reading);
+  return { readingId, ...(await readCarefully(reading, readingId)) };
+}
+
+/** A reading of its own for each attempt; those that were left before are dropped. */
+async function beginReading({ run, sampleId, progress }: Reading): Promise<string> {
+  const readingId = randomUUID();
+  await run.write(async (tx) => {
+    await dropReadings(run.context, tx, sampleId, null);
+    await rows(
+      run.context.sequelize,
+      'INSERT INTO sample_readings (id, sample_id, run_id, attempt) VALUES ($1, $2, $3, $4) RETURNING id',
+      [readingId, sampleId, run.run.id, run.attempt],
+      tx,
+    );
+  });
+  progress(0);
+  return readingId;
+}
+
 /** What a run without a result leaves behind: nothing. The sample keeps the reading that it had. */
 export async function abandonReading(tx: Transaction, runId: string): Promise<void> {
   const sequelize = Sample.sequelize!;
@@ -130,11 +128,6 @@ export async function abandonReading(tx: Transaction, runId: string): Promise<vo
   );
 }
 
-const missingIn = (choices: ReadingChoices): ((text: string) => boolean) => {
-  const tokens = new Set(choices.missing);
-  return (text) => text === '' || tokens.has(text);
-};
-
 /** Readings that the sample does not point at: those of attempts that were lost or cancelled, and the one before. */
 async function dropReadings(context: Context, tx: Transaction, sampleId: string, keep: string | null): Promise<void> {
   await rows(
@@ -144,12 +137,6 @@ async function dropReadings(context: Context, tx: Transaction, sampleId: string,
     [sampleId, keep],
     tx,
   );
-}
-
-function judgePersonal(name: string, { codes, texts }: ColumnSegment, isMissing: (text: string) => boolean): Personal | null {
-  const counts = new Uint32Array(texts.length);
-  for (const code of codes) counts[code]++;
-  return personalColumn(name, texts, counts, isMissing);
 }
 
 async function refuseFile(

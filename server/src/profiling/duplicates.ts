@@ -1,4 +1,4 @@
-import type { ColumnSegment } from '../../../reading/index';
+import type { ColumnSegment } from '../reading/index';
 
 /**
  * Counts records that equal an earlier one in every column, from two 32-bit hashes (FNV-1a of the texts, folded over the columns) of each
@@ -20,13 +20,23 @@ export class DuplicateRows {
         two[row] = Math.imul(((two[row] << 13) | (two[row] >>> 19)) ^ second[code], 0x85ebca6b);
       }
     }
-    if (this.rows + rows > this.keys.length) {
-      const grown = new Float64Array(Math.max(this.keys.length * 2, this.rows + rows));
-      grown.set(this.keys.subarray(0, this.rows));
-      this.keys = grown;
-    }
+    this.makeRoom(rows);
     for (let row = 0; row < rows; row++) this.keys[this.rows + row] = one[row] * 0x200000 + (two[row] >>> 11);
     this.rows += rows;
+  }
+
+  /** Adds rows whose hashes are known already, all of one file made in the same way (reading/plain). In any order. */
+  addKeys(keys: Float64Array): void {
+    this.makeRoom(keys.length);
+    this.keys.set(keys, this.rows);
+    this.rows += keys.length;
+  }
+
+  private makeRoom(rows: number): void {
+    if (this.rows + rows <= this.keys.length) return;
+    const grown = new Float64Array(Math.max(this.keys.length * 2, this.rows + rows));
+    grown.set(this.keys.subarray(0, this.rows));
+    this.keys = grown;
   }
 
   count(): number {

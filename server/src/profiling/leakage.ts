@@ -1,7 +1,7 @@
 import type { ColumnFlag } from '@tallystone/contracts/samples/columns';
 import { weightOfEvidence } from '@tallystone/numeric';
-import { type NumberReader } from '../../../reading/index';
-import type { TextColumn } from '../../../replay/source';
+import { type NumberReader } from '../reading/index';
+import type { TextColumn } from '../replay/source';
 
 /** Per row: 1 good, 0 bad, anything else neither. */
 export type OutcomeCodes = Uint8Array;

@@ -1,6 +1,6 @@
 import type { ColumnFlag } from '@tallystone/contracts/samples/columns';
 import type { ColumnKind } from '@tallystone/contracts/samples/reading';
-import { type NumberFault, type NumberReader, judgeFormat } from '../../../reading/index';
+import { type NumberFault, type NumberReader, judgeFormat } from '../reading/index';
 
 /** Rows of one distinct text of a column that is not missing. */
 export interface Counted {

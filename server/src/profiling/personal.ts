@@ -21,6 +21,12 @@ const nationalNumber =
 const identifierName =
   /\b(id|ids|uuid|guid|ref|reference|identifier|key)$|\b(application|account|customer|loan|contract|case|record|row) (no|nr|number)\b/;
 
+/** Whether a heading alone, or with values that all differ, can make a column one that identifies people. */
+export function headingMayIdentify(name: string): boolean {
+  const spoken = words(name);
+  return personName.test(spoken) || nationalNumber.test(spoken) || identifierName.test(spoken);
+}
+
 /** Share of rows that must differ before values look like names of single applicants. */
 const nearUnique = 0.95;
 /** Fewer rows than this say nothing about uniqueness. */

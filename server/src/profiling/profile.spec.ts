@@ -1,7 +1,7 @@
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
 import { describe, expect, it } from 'vitest';
-import { numberReader } from '../../../reading/index';
-import { sourceOf, type TextColumn } from '../../../replay/source';
+import { numberReader } from '../reading/index';
+import { sourceOf, type TextColumn } from '../replay/source';
 import { DuplicateRows } from './duplicates';
 import { isIsoDate } from './kind';
 import { suspectLeakage } from './leakage';

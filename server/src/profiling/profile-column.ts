@@ -1,7 +1,7 @@
 import type { ColumnFlag, ColumnProfile } from '@tallystone/contracts/samples/columns';
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
-import { numberReader } from '../../../reading/index';
-import type { TextColumn } from '../../../replay/source';
+import { numberReader } from '../reading/index';
+import type { TextColumn } from '../replay/source';
 import { type Counted, isIsoDate, judgeKind, thin } from './kind';
 import type { Personal } from './personal';
 import { suspectSpecials } from './specials';

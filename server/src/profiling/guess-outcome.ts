@@ -1,6 +1,6 @@
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
 import type { DraftOutcome } from '@tallystone/contracts/samples/definition';
-import type { TextColumn } from '../../../replay/source';
+import type { TextColumn } from '../replay/source';
 import type { OutcomeCodes } from './leakage';
 
 const badWords = /^(bad|b|default|defaulted|d|delinquent|charged[ _-]?off|write[ _-]?off)$/i;

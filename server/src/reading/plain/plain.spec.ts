@@ -1,0 +1,158 @@
+import { stringify } from 'csv-stringify/sync';
+import fc from 'fast-check';
+import { describe, expect, it } from 'vitest';
+import { encodePacked } from '../../storage/packedSegment';
+import { decodeSegment } from '../../storage/segmentCoding';
+import { type ReadingChoices, readSegments } from '../index';
+import { inPieces } from '../testing/generated-files';
+import { NotPlain } from './field-index';
+import { SegmentCoder } from './segment-coder';
+import { splitRecords } from './split-records';
+
+/** The fast reader gives what the careful one gives, or says that the file is not for it. */
+
+interface Read {
+  header: string[];
+  sha256: string;
+  bytes: number;
+  /** Per segment and row its fields. */
+  segments: string[][][];
+  keys: number[];
+}
+
+const segmentRows = 5;
+
+async function fast(bytes: Buffer, choices: ReadingChoices, size: number): Promise<Read | string> {
+  const options = { segmentRows, mostRows: 60, mostColumns: 6 };
+  const file = splitRecords(inPieces(bytes, size), choices, options);
+  const segments: string[][][] = [];
+  const keys: number[] = [];
+  let coder: SegmentCoder | null = null;
+  try {
+    for await (const { pieces, rows } of file.segments) {
+      coder ??= new SegmentCoder({
+        delimiter: choices.delimiter.charCodeAt(0),
+        trim: choices.trim,
+        width: file.facts().header.length,
+        mostBytes: 40,
+        sign: 46,
+        seed: 99,
+        mostRows: segmentRows,
+      });
+      coder.begin([], []);
+      for (const piece of pieces) coder.add(piece);
+      if (coder.rows !== rows) throw new NotPlain('records end elsewhere than they seemed to');
+      const columns = coder.columns.map((column) => decodeSegment(encodePacked(column)));
+      segments.push(Array.from({ length: rows }, (_, row) => columns.map(({ codes, texts }) => texts[codes[row]])));
+      keys.push(...coder.keys.subarray(0, rows));
+    }
+  } catch (thrown) {
+    if (thrown instanceof NotPlain) return thrown.message;
+    throw thrown;
+  }
+  const { header, sha256, bytes: count } = file.facts();
+  return { header, sha256, bytes: count, segments, keys };
+}
+
+async function careful(bytes: Buffer, choices: ReadingChoices, size: number): Promise<Omit<Read, 'keys'> | null> {
+  const options = { segmentRows, mostRows: 60, mostColumns: 6, mostCharacters: 40 };
+  const file = readSegments(inPieces(bytes, size), choices, options);
+  const segments: string[][][] = [];
+  for await (const { rows, columns } of file.segments)
+    segments.push(Array.from({ length: rows }, (_, row) => columns.map(({ codes, texts }) => texts[codes[row]])));
+  const { header, sha256, bytes: count, problems } = file.facts();
+  return problems.length > 0 ? null : { header, sha256, bytes: count, segments };
+}
+
+const choicesOf = (delimiter: string, trim: boolean, encoding: ReadingChoices['encoding'] = 'utf-8'): ReadingChoices => ({
+  delimiter,
+  trim,
+  encoding,
+});
+
+async function same(bytes: Buffer, choices: ReadingChoices, sizes: readonly [number, number]): Promise<'read' | 'not plain'> {
+  const [quick, exact] = [await fast(bytes, choices, sizes[0]), await careful(bytes, choices, sizes[1])];
+  if (typeof quick === 'string') return 'not plain';
+  const { keys, ...read } = quick;
+  expect(read).toEqual(exact);
+  // Equal rows have equal keys, in whichever segment and style they were coded; others have different ones.
+  const byKey = new Map<number, string>();
+  read.segments.flat().forEach((row, place) => {
+    const text = JSON.stringify(row);
+    expect(byKey.get(keys[place]) ?? text).toBe(text);
+    byKey.set(keys[place], text);
+  });
+  expect(byKey.size).toBe(new Set(read.segments.flat().map((row) => JSON.stringify(row))).size);
+  return 'read';
+}
+
+const sizes = fc.tuple(fc.integer({ min: 1, max: 40 }), fc.integer({ min: 1, max: 4096 }));
+const cell = fc.oneof(
+  fc.constantFrom('', '0', '1', '1.5', '1.50', '-0', '007', 'NA', 'a b', ' x', 'é', '€', '"', '"q"', ',', '\n', '\r\n', '\t'),
+  fc.integer({ min: -99, max: 99 }).map(String),
+  fc.string({ unit: 'grapheme', maxLength: 6 }).map((text) => text.replaceAll('\0', '')),
+);
+
+describe('the fast reader', () => {
+  it('reads every well-formed file with line feeds, as the careful one does, cut anywhere', async () => {
+    const table = fc
+      .integer({ min: 1, max: 4 })
+      .chain((width) => fc.array(fc.array(cell, { minLength: width, maxLength: width }), { minLength: 1, maxLength: 30 }));
+    await fc.assert(
+      fc.asyncProperty(table, sizes, fc.constantFrom(',', ';', '\t', '|'), fc.constantFrom('\n', '\r\n'), fc.boolean(), async (rows, cut, delimiter, end, quoted) => {
+        const header = rows[0].map((_, place) => `c${place}`);
+        const bytes = Buffer.from(stringify([header, ...rows], { delimiter, record_delimiter: end, quoted }));
+        // A lone carriage return inside quotes is content; nothing else here is unusual.
+        if (quoted) expect(await same(bytes, choicesOf(delimiter, false), cut)).toBe('read');
+        else await same(bytes, choicesOf(delimiter, true), cut);
+      }),
+      { numRuns: 400 },
+    ); // prettier-ignore
+  });
+
+  it('agrees on anything else, or leaves it', async () => {
+    const wild = fc
+      .array(fc.constantFrom('a', '1', '.5', ' ', ',', '"', '\n', '\n', '\r\n', '\r', 'é', '\0', '\t', '-'), { maxLength: 60 })
+      .map((parts) => parts.join(''));
+    const outcomes = { read: 0, 'not plain': 0 };
+    await fc.assert(
+      fc.asyncProperty(fc.constantFrom('x,y\n', 'x\n', 'x,y,z\n'), wild, sizes, fc.boolean(), async (header, text, cut, trim) => {
+        outcomes[await same(Buffer.from(header + text), choicesOf(',', trim), cut)]++;
+      }),
+      { numRuns: 3000 },
+    );
+    expect(outcomes.read).toBeGreaterThan(100);
+    expect(outcomes['not plain']).toBeGreaterThan(100);
+  });
+
+  it('reads the other encodings, and leaves what does not belong to them', async () => {
+    const text = `naïve,prix\r\n${Array.from({ length: 12 }, (_, row) => `€ ${row},"œuf\n😀"`).join('\r\n')}\r\n`;
+    const utf16 = Buffer.from(`\ufeff${text}`, 'utf16le');
+    for (const cut of [1, 3, 4096]) {
+      expect(await same(Buffer.from(`\ufeff${text}`), choicesOf(',', true), [cut, 100])).toBe('read');
+      expect(await same(utf16, choicesOf(',', true, 'utf-16le'), [cut, 100])).toBe('read');
+      expect(await same(Buffer.from(utf16).swap16(), choicesOf(',', true, 'utf-16be'), [cut, 100])).toBe('read');
+      expect(await same(Buffer.from('a,b\n\xe9,\x80\n', 'latin1'), choicesOf(',', true, 'windows-1252'), [cut, 100])).toBe(
+        'read',
+      );
+      expect(await fast(Buffer.from('a,b\n\xe9,1\n', 'latin1'), choicesOf(',', true), cut)).toContain('not UTF-8');
+      expect(await fast(Buffer.from('a,b\n\x81,1\n', 'latin1'), choicesOf(',', true, 'windows-1252'), cut)).toContain('encoding');
+    }
+  });
+
+  it('lets blank lines stand at the end, and leaves everything that has a problem', async () => {
+    const rows = '1,2\n'.repeat(5);
+    expect(await same(Buffer.from(`a,b\n${rows}\n\r\n\n`), choicesOf(',', true), [4096, 9])).toBe('read');
+    const not = (text: string): Promise<Read | string> => fast(Buffer.from(text), choicesOf(',', true), 4096);
+    expect(await not('a,b\n1,2\n\n1,2\n')).toContain('too few');
+    expect(await not('a,b\n1,2,3\n')).toContain('too many');
+    expect(await not('a,b\n"1"x,2\n')).toContain('closing quote');
+    expect(await not('a,b\n1,"2\n')).toContain('open quote');
+    expect(await not('a,b\n1,\0\n')).toContain('NUL');
+    expect(await not(`a,b\n1,${'x'.repeat(41)}\n`)).toContain('long field');
+    expect(await not(`a,b\n${'1,2\n'.repeat(61)}`)).toContain('too many rows');
+    expect(await not('a,b\n')).toContain('no rows');
+    expect(await not('a,a\n1,2\n')).toContain('header');
+    expect(await not('PK\u0003\u0004')).toBe('archive');
+  });
+});

@@ -1,0 +1,24 @@
+import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
+import type { Personal } from '../../profiling/personal';
+import type { FileFacts } from '../../reading/index';
+import type { ReadingRun } from './read-file';
+
+/** What both readers of a raw file are given, and what they come to. */
+
+export interface Reading {
+  readonly run: ReadingRun;
+  readonly sampleId: string;
+  readonly choices: ReadingChoices;
+  /** Key of the hashes that columns which identify people are kept as. */
+  readonly key: Buffer;
+  /** Says how many bytes of the file have been read. */
+  readonly progress: (bytes: number) => void;
+}
+
+export interface ReadRows {
+  readonly facts: FileFacts;
+  /** Per column what identifies people in it, or null. */
+  readonly personal: readonly (Personal | null)[];
+  /** Records that equal an earlier one. */
+  readonly duplicateRows: number;
+}
