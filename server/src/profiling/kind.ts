@@ -45,14 +45,9 @@ export function judgeKind(values: readonly Counted[], reader: NumberReader): Jud
   const total = sum(values);
   if (total === 0) return { kind: 'categorical', against: null, flags: [] };
   const notNumbers = values.filter(({ text }) => Number.isNaN(reader.read(text)));
+  const numeric = judgeNumbers(total, notNumbers, reader);
+  if (numeric !== null) return numeric;
   const odd = sum(notNumbers);
-  if (odd === 0) return { kind: 'numeric', against: null, flags: [] };
-  // NaN, Inf, 0x10 and the like stand where numbers were meant: they are counted, and make no category.
-  const words = sum(notNumbers.filter(({ text }) => reader.fault(text) === 'text'));
-  if (odd < total && total - words >= mostlyNumbers * total) {
-    const finding = `${thin(odd)} of ${thin(total)} values are no numbers: ${listed(notNumbers, (text) => ` (${faultWords[reader.fault(text)]})`)}.`;
-    return { kind: 'numeric', against: finding, flags: [{ code: 'unreadable-numbers', weight: 'look', finding }] };
-  }
   const notDates = values.filter(({ text }) => !isIsoDate(text));
   const oddDates = sum(notDates);
   if (total - oddDates >= mostlyNumbers * total) {
@@ -61,6 +56,19 @@ export function judgeKind(values: readonly Counted[], reader: NumberReader): Jud
     return { kind: 'date', against: finding, flags: [{ code: 'doubtful-dates', weight: 'look', finding }] };
   }
   return { kind: 'categorical', ...doubtful(values, total, total - odd, reader) };
+}
+
+/** Whether a column of `total` values that are not missing is one of numbers, by those that are none; null if it is something else. */
+export function judgeNumbers(total: number, notNumbers: readonly Counted[], reader: NumberReader): JudgedKind | null {
+  const odd = sum(notNumbers);
+  if (odd === 0) return { kind: 'numeric', against: null, flags: [] };
+  // NaN, Inf, 0x10 and the like stand where numbers were meant: they are counted, and make no category.
+  const words = sum(notNumbers.filter(({ text }) => reader.fault(text) === 'text'));
+  if (odd < total && total - words >= mostlyNumbers * total) {
+    const finding = `${thin(odd)} of ${thin(total)} values are no numbers: ${listed(notNumbers, (text) => ` (${faultWords[reader.fault(text)]})`)}.`;
+    return { kind: 'numeric', against: finding, flags: [{ code: 'unreadable-numbers', weight: 'look', finding }] };
+  }
+  return null;
 }
 
 /** A column of texts that look like something else: numbers written otherwise, dates in an order that has to be asked for. */

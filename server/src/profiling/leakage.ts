@@ -26,10 +26,24 @@ export function suspectLeakage(
     if (outcome[row] === 1) goods[code]++;
     else if (outcome[row] === 0) bads[code]++;
   });
-  const grouped = groupTexts(column.texts, isMissing, goods, bads, reader);
-  const total = (list: readonly { goods: number; bads: number }[], key: 'goods' | 'bads'): number =>
-    list.reduce((sum, group) => sum + group[key], 0);
-  if (total(grouped, 'goods') === 0 || total(grouped, 'bads') === 0 || grouped.length < 2) return null;
+  return judgeGroups(groupTexts(column.texts, isMissing, goods, bads, reader));
+}
+
+/** Goods and bads of some distinct values. */
+export interface OutcomeCounts {
+  readonly length: number;
+  readonly goods: ArrayLike<number>;
+  readonly bads: ArrayLike<number>;
+}
+
+/** The same from counts: of numbers ascending, then of the texts that are none. */
+export function leakageOfNumbers(known: readonly OutcomeCounts[], missing: { goods: number; bads: number }): ColumnFlag | null {
+  return judgeGroups([...(missing.goods + missing.bads > 0 ? [missing] : []), ...groupsOfEqualSize(known)]);
+}
+
+function judgeGroups(grouped: readonly { goods: number; bads: number }[]): ColumnFlag | null {
+  const total = (key: 'goods' | 'bads'): number => grouped.reduce((sum, group) => sum + group[key], 0);
+  if (total('goods') === 0 || total('bads') === 0 || grouped.length < 2) return null;
   const { informationValue } = weightOfEvidence(
     grouped.map((group) => group.goods),
     grouped.map((group) => group.bads),
@@ -76,15 +90,27 @@ function groupTexts(
     if (rare.goods + rare.bads > 0) result.push(rare);
     return result;
   }
-  known.sort((a, b) => (Number.isNaN(a.value) ? 1 : Number.isNaN(b.value) ? -1 : a.value - b.value));
-  const size = known.reduce((sum, one) => sum + one.goods + one.bads, 0) / groups;
+  const order = (value: number): number => (Number.isNaN(value) ? 1 : 0);
+  known.sort((a, b) => order(a.value) - order(b.value) || (Number.isNaN(a.value) ? 0 : a.value - b.value));
+  const sorted = { length: known.length, goods: known.map((one) => one.goods), bads: known.map((one) => one.bads) };
+  return [...result, ...groupsOfEqualSize([sorted])];
+}
+
+function groupsOfEqualSize(known: readonly OutcomeCounts[]): { goods: number; bads: number }[] {
+  let size = 0;
+  for (const { length, goods, bads } of known) for (let place = 0; place < length; place++) size += goods[place] + bads[place];
+  size /= groups;
+  const result: { goods: number; bads: number }[] = [];
   let group = { goods: 0, bads: 0 };
-  for (const one of known) {
-    group.goods += one.goods;
-    group.bads += one.bads;
-    if (group.goods + group.bads >= size) {
-      result.push(group);
-      group = { goods: 0, bads: 0 };
+  for (const { length, goods, bads } of known) {
+    for (let place = 0; place < length; place++) {
+      if (goods[place] + bads[place] === 0) continue;
+      group.goods += goods[place];
+      group.bads += bads[place];
+      if (group.goods + group.bads >= size) {
+        result.push(group);
+        group = { goods: 0, bads: 0 };
+      }
     }
   }
   if (group.goods + group.bads > 0) result.push(group);

@@ -2,13 +2,14 @@ import type { ColumnFlag, ColumnProfile } from '@tallystone/contracts/samples/co
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
 import { numberReader } from '../reading/index';
 import type { TextColumn } from '../replay/source';
+import { type CountedNumbers, countNumbers, withoutPlaces } from './counted-numbers';
 import { type Counted, isIsoDate, judgeKind, thin } from './kind';
 import type { Personal } from './personal';
 import { suspectSpecials } from './specials';
 import { suggestRole } from './suggest-role';
 
 /** Values listed with their counts. */
-const mostListed = 50;
+export const mostListed = 50;
 const quantileShares = [0, 0.01, 0.05, 0.1, 0.25, 0.5, 0.75, 0.9, 0.95, 0.99, 1];
 const histogramBins = 30;
 
@@ -35,42 +36,77 @@ export function profileColumn(
     if (text === '' || missingTexts.has(text)) missingTokens.push({ value: text, count });
     else all.push({ text, count });
   });
-  const rows = column.codes.length;
-  const missing = missingTokens.reduce((total, { count }) => total + count, 0);
-  const ranked = [...all].sort((a, b) => b.count - a.count || (a.text < b.text ? -1 : 1));
   const reader = numberReader(choices);
   const judged = personal ? { kind: 'categorical' as const, flags: [] } : judgeKind(all, reader);
-  const numbers = judged.kind === 'numeric' ? numbersOf(all, reader.read) : null;
-  const specialSuspects = numbers ? suspectSpecials(numbers) : [];
-  const suspected = new Set(specialSuspects.map(({ value }) => value));
-  const amounts = numbers?.filter(({ text }) => !suspected.has(text)) ?? null;
-  const flags: ColumnFlag[] = [...shape(rows, missing, ranked, judged.kind), ...judged.flags];
+  return describeColumn({
+    name,
+    position,
+    personal,
+    rows: column.codes.length,
+    missingTokens,
+    kind: judged.kind,
+    kindFlags: judged.flags,
+    distinct: all.length,
+    mostFrequent: mostFrequentOf(all, mostListed),
+    numbers: judged.kind === 'numeric' ? countNumbers(all, reader.read) : null,
+    date: judged.kind === 'date' ? describeDates(all) : null,
+    text: judged.kind === 'categorical' && all.length > 0 && !personal ? describeTexts(all) : null,
+  });
+}
+
+/** What has been counted in a column, however that was done. */
+export interface ColumnFacts {
+  readonly name: string;
+  readonly position: number;
+  readonly personal: Personal | null;
+  readonly rows: number;
+  /** In the order in which they stand in the column's dictionary. */
+  readonly missingTokens: readonly { readonly value: string; readonly count: number }[];
+  readonly kind: ColumnProfile['kind'];
+  readonly kindFlags: readonly ColumnFlag[];
+  /** Different texts that are not missing. */
+  readonly distinct: number;
+  /** The most frequent of them, at most `mostListed`; the same count in the order of the texts. */
+  readonly mostFrequent: readonly Counted[];
+  /** Of a numeric column. */
+  readonly numbers: CountedNumbers | null;
+  readonly date: ColumnProfile['date'];
+  readonly text: ColumnProfile['text'];
+}
+
+export function describeColumn(facts: ColumnFacts): ColumnProfile {
+  const { name, position, personal, rows, missingTokens, kind, distinct, mostFrequent, numbers } = facts;
+  const missing = missingTokens.reduce((total, { count }) => total + count, 0);
+  const codes = numbers ? suspectSpecials(numbers) : null;
+  const specialSuspects = codes?.suspects ?? [];
+  const amounts = numbers && codes ? withoutPlaces(numbers, codes.places) : null;
+  const flags: ColumnFlag[] = [...shape(rows, missing, mostFrequent[0], distinct, kind), ...facts.kindFlags];
   if (specialSuspects.length > 0) {
-    const codes = specialSuspects.map(({ value, count }) => `${value.replace('-', '\u2212')} (${thin(count)})`).join(', ');
+    const listed = specialSuspects.map(({ value, count }) => `${value.replace('-', '\u2212')} (${thin(count)})`).join(', ');
     flags.push({
       code: 'special-code-suspected',
       weight: 'look',
-      finding: `May be special codes rather than amounts: ${codes}.`,
+      finding: `May be special codes rather than amounts: ${listed}.`,
     });
   }
-  if (personal) flags.push(...personalFlags(personal, rows - missing, all.length));
-  const suggestion = suggestRole({ name, kind: judged.kind, rows, missing, ranked, personal, flags });
+  if (personal) flags.push(...personalFlags(personal, rows - missing, distinct));
+  const suggestion = suggestRole({ name, kind, rows, missing, distinct, personal, flags });
   if (suggestion.protectedFinding)
     flags.push({ code: 'looks-like-protected', weight: 'look', finding: suggestion.protectedFinding });
   return {
     position,
     column: name,
-    kind: judged.kind,
+    kind,
     rows,
-    distinct: all.length,
+    distinct,
     missing,
-    missingTokens: missingTokens.sort((a, b) => b.count - a.count),
+    missingTokens: [...missingTokens].sort((a, b) => b.count - a.count),
     specialSuspects,
-    mostFrequent: personal ? [] : ranked.slice(0, mostListed).map(({ text, count }) => ({ value: text, count })),
-    valuesComplete: !personal && ranked.length <= mostListed,
+    mostFrequent: personal ? [] : mostFrequent.map(({ text, count }) => ({ value: text, count })),
+    valuesComplete: !personal && distinct <= mostListed,
     numeric: amounts && amounts.length > 0 ? describeNumbers(amounts) : null,
-    date: judged.kind === 'date' ? describeDates(all) : null,
-    text: judged.kind === 'categorical' && all.length > 0 && !personal ? describeTexts(all) : null,
+    date: facts.date,
+    text: facts.text,
     flags,
     suggestedRole: suggestion.role,
     suggestedProtected: suggestion.protected,
@@ -79,31 +115,31 @@ export function profileColumn(
   };
 }
 
-export interface CountedNumber {
-  readonly value: number;
-  readonly text: string;
-  readonly count: number;
-}
-
-/** Distinct numbers ascending; texts that spell the same number are one. */
-function numbersOf(values: readonly Counted[], read: (text: string) => number): CountedNumber[] {
-  const byValue = new Map<number, { value: number; text: string; count: number }>();
-  for (const { text, count } of values) {
-    const value = read(text);
-    if (Number.isNaN(value)) continue;
-    const known = byValue.get(value);
-    if (known) known.count += count;
-    else byValue.set(value, { value, text, count });
+/** The `most` most frequent, those of one count in the order of their texts. */
+export function mostFrequentOf(all: readonly Counted[], most: number): Counted[] {
+  const before = (a: Counted, b: Counted): boolean => a.count > b.count || (a.count === b.count && a.text < b.text);
+  const top: Counted[] = [];
+  for (const one of all) {
+    if (top.length === most && !before(one, top[most - 1])) continue;
+    let place = top.length;
+    while (place > 0 && before(one, top[place - 1])) place--;
+    top.splice(place, 0, one);
+    if (top.length > most) top.pop();
   }
-  return [...byValue.values()].sort((a, b) => a.value - b.value);
+  return top;
 }
 
-function shape(rows: number, missing: number, ranked: readonly Counted[], kind: ColumnProfile['kind']): ColumnFlag[] {
+function shape(
+  rows: number,
+  missing: number,
+  first: Counted | undefined,
+  distinct: number,
+  kind: ColumnProfile['kind'],
+): ColumnFlag[] {
   const known = rows - missing;
-  if (known === 0) return [{ code: 'all-missing', weight: 'stop', finding: `All ${thin(rows)} values are missing.` }];
+  if (first === undefined) return [{ code: 'all-missing', weight: 'stop', finding: `All ${thin(rows)} values are missing.` }];
   const flags: ColumnFlag[] = [];
-  const [first] = ranked;
-  if (ranked.length === 1) {
+  if (distinct === 1) {
     const rest = missing > 0 ? ` where it is not missing` : '';
     const weight = missing > 0 ? ('look' as const) : ('stop' as const);
     flags.push({ code: 'constant', weight, finding: `Always ${JSON.stringify(first.text.slice(0, 60))}${rest}.` });
@@ -116,11 +152,11 @@ function shape(rows: number, missing: number, ranked: readonly Counted[], kind: 
   }
   if (missing >= 0.5 * rows)
     flags.push({ code: 'mostly-missing', weight: 'look', finding: `${share(missing, rows)} of the values are missing.` });
-  if (kind === 'categorical' && known >= 30 && ranked.length >= 0.95 * known) {
+  if (kind === 'categorical' && known >= 30 && distinct >= 0.95 * known) {
     flags.push({
       code: 'near-unique',
       weight: 'stop',
-      finding: `${thin(ranked.length)} different texts in ${thin(known)} rows: no group has any size.`,
+      finding: `${thin(distinct)} different texts in ${thin(known)} rows: no group has any size.`,
     });
   }
   return flags;
@@ -140,56 +176,62 @@ function personalFlags(personal: Personal, known: number, distinct: number): Col
 }
 
 /** Mean and deviation in one pass over distinct values (weighted Welford 1962); quantiles are type 7 of Hyndman and Fan 1996. */
-function describeNumbers(numbers: readonly CountedNumber[]): NonNullable<ColumnProfile['numeric']> {
+function describeNumbers({ values, counts, length }: CountedNumbers): NonNullable<ColumnProfile['numeric']> {
   let n = 0;
   let mean = 0;
   let squares = 0;
-  for (const { value, count } of numbers) {
+  let integers = true;
+  for (let place = 0; place < length; place++) {
+    const value = values[place];
+    const count = counts[place];
     n += count;
     const distance = value - mean;
     mean += (distance * count) / n;
     squares += count * distance * (value - mean);
+    integers &&= Number.isInteger(value);
   }
-  const smallest = numbers[0].value;
-  const largest = numbers[numbers.length - 1].value;
+  const smallest = values[0];
+  const largest = values[length - 1];
   return {
     smallest,
     largest,
     mean,
     standardDeviation: n > 1 ? Math.sqrt(squares / (n - 1)) : 0,
-    quantiles: quantileShares.map((part) => ({ share: part, value: quantile(numbers, n, part) })),
-    histogram: histogram(numbers, smallest, largest),
-    integers: numbers.every(({ value }) => Number.isInteger(value)),
+    quantiles: quantiles(values, counts, length, n),
+    histogram: histogram(values, counts, length),
+    integers,
   };
 }
 
-function quantile(numbers: readonly CountedNumber[], n: number, part: number): number {
-  const at = part * (n - 1);
-  const below = Math.floor(at);
-  let seen = 0;
-  for (let place = 0; place < numbers.length; place++) {
-    seen += numbers[place].count;
-    if (below >= seen) continue;
-    const { value } = numbers[place];
-    if (below + 1 < seen || place + 1 === numbers.length) return value;
-    return value + (at - below) * (numbers[place + 1].value - value);
-  }
-  return numbers[numbers.length - 1].value;
+function quantiles(values: Float64Array, counts: Float64Array, length: number, n: number): { share: number; value: number }[] {
+  let place = 0;
+  let seen = counts[0];
+  return quantileShares.map((share) => {
+    const at = share * (n - 1);
+    const below = Math.floor(at);
+    while (below >= seen && place + 1 < length) seen += counts[++place];
+    const value = values[place];
+    if (below + 1 < seen || place + 1 === length) return { share, value };
+    return { share, value: value + (at - below) * (values[place + 1] - value) };
+  });
 }
 
-function histogram(numbers: readonly CountedNumber[], smallest: number, largest: number): { edges: number[]; counts: number[] } {
+function histogram(values: Float64Array, counts: Float64Array, length: number): { edges: number[]; counts: number[] } {
+  const smallest = values[0];
+  const largest = values[length - 1];
   // A few distinct values get a bar each; otherwise bars of equal width.
   const bins = smallest === largest ? 1 : histogramBins;
   const edges = Array.from({ length: bins + 1 }, (_, k) => (k === bins ? largest : smallest + ((largest - smallest) * k) / bins));
-  const counts = Array.from({ length: bins }, () => 0);
-  for (const { value, count } of numbers) {
+  const bars = Array.from({ length: bins }, () => 0);
+  for (let place = 0; place < length; place++) {
+    const value = values[place];
     let bin = largest === smallest ? 0 : Math.min(bins - 1, Math.floor(((value - smallest) / (largest - smallest)) * bins));
     // Division rounds: the edge decides.
     if (bin + 1 < bins && value >= edges[bin + 1]) bin++;
     else if (bin > 0 && value < edges[bin]) bin--;
-    counts[bin] += count;
+    bars[bin] += counts[place];
   }
-  return { edges, counts };
+  return { edges, counts: bars };
 }
 
 function describeDates(values: readonly Counted[]): NonNullable<ColumnProfile['date']> {

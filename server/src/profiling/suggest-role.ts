@@ -1,6 +1,5 @@
 import type { ColumnFlag, ColumnRole } from '@tallystone/contracts/samples/columns';
 import type { ColumnKind } from '@tallystone/contracts/samples/reading';
-import type { Counted } from './kind';
 import type { Personal } from './personal';
 
 export interface RoleEvidence {
@@ -8,7 +7,8 @@ export interface RoleEvidence {
   readonly kind: ColumnKind;
   readonly rows: number;
   readonly missing: number;
-  readonly ranked: readonly Counted[];
+  /** Different values that are not missing. */
+  readonly distinct: number;
   readonly personal: Personal | null;
   readonly flags: readonly ColumnFlag[];
 }
@@ -78,6 +78,9 @@ const byHeading: readonly [ColumnRole, ReturnType<typeof single>, string][] = [
   ['segment', single(/^segment\b|\bsegment$/, 30, ['categorical']), 'Its heading names a segment.'],
 ];
 
+/** Whether a column of this heading may be suggested as the outcome, once its values are known. */
+export const headingNamesOutcome = (name: string): boolean => byHeading[0][1].heading.test(spoken(name));
+
 export function suggestRole(evidence: RoleEvidence): RoleSuggestion {
   const heading = spoken(evidence.name);
   const isProtected = protectedWords.test(heading);
@@ -99,7 +102,7 @@ export function suggestRole(evidence: RoleEvidence): RoleSuggestion {
   if (stop) return { ...common, role: 'not used', reason: stop.finding };
   for (const [role, fits, reason] of byHeading) {
     if (!fits.heading.test(heading)) continue;
-    if (fits.mostValues !== null && evidence.ranked.length > fits.mostValues) continue;
+    if (fits.mostValues !== null && evidence.distinct > fits.mostValues) continue;
     if (fits.kinds !== null && !fits.kinds.includes(evidence.kind)) continue;
     return { ...common, role, reason };
   }

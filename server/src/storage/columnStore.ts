@@ -1,6 +1,7 @@
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../database/sql';
-import { type ColumnSource, type TextColumn, codesFor } from '../replay/source';
+import type { ColumnSource, TextColumn } from '../replay/source';
+import { joinSegments } from './joinSegments';
 import { type TextSegment, decodeSegment, encodeSegment } from './segmentCoding';
 
 /** Values per segment of a column: 2 bytes tell any of them apart. */
@@ -50,17 +51,14 @@ export async function storeContents(
   }
 }
 
-/** The segments of one column in order, each decoded when asked for. */
-export async function* readSegmentsOf(sequelize: Sequelize, readingId: string, position: number): AsyncGenerator<TextSegment> {
-  for (let segment = 0; ; segment++) {
-    const [found] = await rows<{ content: Buffer }>(
-      sequelize,
-      'SELECT content FROM column_segments WHERE reading_id = $1 AND position = $2 AND segment = $3',
-      [readingId, position, segment],
-    );
-    if (!found) return;
-    yield decodeSegment(found.content);
-  }
+/** One column as it is stored: its segments in order. */
+export async function readContents(sequelize: Sequelize, readingId: string, position: number): Promise<Buffer[]> {
+  const found = await rows<{ content: Buffer }>(
+    sequelize,
+    'SELECT content FROM column_segments WHERE reading_id = $1 AND position = $2 ORDER BY segment',
+    [readingId, position],
+  );
+  return found.map(({ content }) => content);
 }
 
 /** One whole column in memory, with one dictionary over all its segments. */
@@ -70,23 +68,10 @@ export async function readStoredColumn(
   position: number,
   count: number,
 ): Promise<TextColumn> {
-  const places = new Map<string, number>();
-  const texts: string[] = [];
-  const parts: { codes: TextSegment['codes']; places: Uint32Array }[] = [];
-  for await (const segment of readSegmentsOf(sequelize, readingId, position)) {
-    const mapped = Uint32Array.from(segment.texts, (text) => {
-      const known = places.get(text);
-      if (known !== undefined) return known;
-      places.set(text, texts.length);
-      return texts.push(text) - 1;
-    });
-    parts.push({ codes: segment.codes, places: mapped });
-  }
-  const codes = codesFor(texts.length, count);
-  let row = 0;
-  for (const part of parts) for (const code of part.codes) codes[row++] = part.places[code];
-  if (row !== count) throw new Error(`Column ${position} of reading ${readingId} has ${row} of ${count} rows`);
-  return { kind: 'texts', codes, texts };
+  const column = joinSegments((await readContents(sequelize, readingId, position)).map(decodeSegment));
+  if (column.codes.length !== count)
+    throw new Error(`Column ${position} of reading ${readingId} has ${column.codes.length} of ${count} rows`);
+  return column;
 }
 
 /**

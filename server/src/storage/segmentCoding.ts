@@ -112,7 +112,8 @@ export function decodeSegment(content: Uint8Array): TextSegment {
 /** The bytes of a stored segment; the first is its form. */
 export const inflateSegment = (content: Uint8Array): Buffer => inflateRawSync(content, { chunkSize: 1 << 18 });
 
-function decodeTexts(bytes: Buffer): TextSegment {
+/** Of form 1, inflated. */
+export function decodeTexts(bytes: Buffer): TextSegment {
   let at = 0;
   const varint = (): number => {
     let value = 0;

@@ -6,6 +6,7 @@ import { fitPenaltyPath } from './fit-path';
 import { freezeVersion } from './freeze-version';
 import { hashPassword, verifyPassword } from './passwords';
 import { prepareSample } from './prepare-sample';
+import { profileStored } from './profile-stored';
 import { resampleVersion } from './study-stability';
 
 /**
@@ -22,6 +23,7 @@ export const tasks = {
   'password.verify': verifyPassword,
   'sample.code': codeSegment,
   'sample.prepare': prepareSample,
+  'sample.profile': profileStored,
   'scorecard.build': buildScorecard,
   'version.freeze': freezeVersion,
   'version.resample': resampleVersion,

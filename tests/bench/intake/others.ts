@@ -1,8 +1,12 @@
 import { spawnSync } from 'node:child_process';
+import { existsSync } from 'node:fs';
 import { Client } from 'pg';
 import type { MixedColumn } from './mixed-file';
 
 /** What the product is measured against. */
+
+/** Debian's packages belong to Debian's own Python, which need not be the first on the path. */
+const debianPython = '/usr/bin/python3';
 
 /** Seconds that PostgreSQL's COPY takes to bring the file into a table of typed columns, to the end of its commit. */
 export async function timeCopy(superuserUrl: string, path: string, columns: readonly MixedColumn[]): Promise<number> {
@@ -29,7 +33,7 @@ export function timeReadCsv(path: string, say: (line: string) => void): number |
     'pandas.read_csv(sys.argv[1])',
     'print(time.perf_counter() - began)',
   ].join('\n');
-  const done = spawnSync('python3', ['-c', program, path], { encoding: 'utf8' });
+  const done = spawnSync(existsSync(debianPython) ? debianPython : 'python3', ['-c', program, path], { encoding: 'utf8' });
   if (done.status === 0) return Number(done.stdout);
   say(`pandas is not there (Debian: python3-pandas), its ratio is left out: ${done.stderr.trim().split('\n').at(-1) ?? ''}`);
   return null;

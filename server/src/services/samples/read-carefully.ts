@@ -44,7 +44,7 @@ export async function readCarefully(reading: Reading, readingId: string): Promis
   return { facts, personal, duplicateRows: facts.problems.length > 0 ? 0 : duplicates.count() };
 }
 
-export const missingIn = (choices: ReadingChoices): ((text: string) => boolean) => {
+const missingIn = (choices: ReadingChoices): ((text: string) => boolean) => {
   const tokens = new Set(choices.missing);
   return (text) => text === '' || tokens.has(text);
 };

@@ -7,18 +7,14 @@ import type { Context } from '../../context';
 import { rows } from '../../database/sql';
 import { Sample } from '../../models/sample';
 import { Problem } from '../../problems/problem';
-import { type ReadingProblem, numberReader } from '../../reading/index';
+import type { ReadingProblem } from '../../reading/index';
 import { NotPlain } from '../../reading/plain/field-index';
-import { readStoredColumn } from '../../storage/columnStore';
 import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
 import { writeFirstDraft } from './first-draft';
 import { problemItem } from './problem-item';
-import { guessOutcome } from '../../profiling/guess-outcome';
-import { suspectLeakage } from '../../profiling/leakage';
-import type { Personal } from '../../profiling/personal';
-import { profileColumn } from '../../profiling/profile-column';
-import { missingIn, readCarefully } from './read-carefully';
+import { profileReading } from './profile-reading';
+import { readCarefully } from './read-carefully';
 import { readPlainly } from './read-plainly';
 import type { ReadRows, Reading } from './read-rows';
 
@@ -35,6 +31,7 @@ export interface ReadingRun {
 
 /** Share of the whole that each phase takes, as measured on mixed files. */
 const readingShare = 0.7;
+const profilingShare = 0.25;
 
 /**
  * Reads a raw file segment by segment and keeps it by column: texts coded, what identifies people as keyed hashes, a profile per column. Memory
@@ -54,12 +51,15 @@ export async function readFile(sampleId: string, choices: ReadingChoices, run: R
     key: deriveKey(context.config.keys.identifiers, 'sample columns'),
     progress: (bytes) => run.progress('reading', (readingShare * bytes) / size),
   };
-  const { readingId, facts, personal, duplicateRows } = await readRows(reading);
+  const read = await readRows(reading);
+  const { readingId, facts, duplicateRows } = read;
   if (facts.problems.length > 0) await refuseFile(run, sampleId, choices, facts.problems);
   if (facts.sha256 !== sample.sha256)
     throw new Error(`The stored file of sample ${sampleId} has another fingerprint than the one that arrived`);
 
-  const profiles = await profileAll(run, readingId, facts.header, facts.rows, choices, personal);
+  const profiles = await profileReading(reading, readingId, read, (share) =>
+    run.progress('profiling', readingShare + profilingShare * share),
+  );
   run.progress('storing', 0.98);
   await run.finish(async (tx) => {
     await storeProfiles(context, tx, readingId, profiles);
@@ -154,36 +154,6 @@ async function refuseFile(
   throw new Problem(422, 'file-refused', `${detail} Mend the file and upload it again, or change the reading choices.`, {
     problems: items,
   });
-}
-
-async function profileAll(
-  run: ReadingRun,
-  readingId: string,
-  header: readonly string[],
-  count: number,
-  choices: ReadingChoices,
-  personal: readonly (Personal | null)[],
-): Promise<ColumnProfile[]> {
-  const { sequelize } = run.context;
-  const profiles: ColumnProfile[] = [];
-  for (let position = 0; position < header.length; position++) {
-    run.signal.throwIfAborted();
-    run.progress('profiling', readingShare + (0.25 * position) / header.length);
-    const column = await readStoredColumn(sequelize, readingId, position, count);
-    profiles.push(profileColumn(header[position], position, column, choices, personal[position] ?? null));
-  }
-  const outcome = await guessOutcome(profiles, (position) => readStoredColumn(sequelize, readingId, position, count));
-  if (!outcome) return profiles;
-  const isMissing = missingIn(choices);
-  const reader = numberReader(choices);
-  for (const profile of profiles) {
-    if (profile.suggestedRole !== 'characteristic') continue;
-    run.signal.throwIfAborted();
-    const column = await readStoredColumn(sequelize, readingId, profile.position, count);
-    const flag = suspectLeakage(column, isMissing, outcome, profile.kind === 'numeric' ? reader : null);
-    if (flag) profile.flags.push(flag);
-  }
-  return profiles;
 }
 
 async function storeProfiles(
