@@ -1,5 +1,6 @@
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
-import { hashText, type Personal } from '../profiling/personal';
+import { KeyedHash } from '../profiling/keyed-hash';
+import type { Personal } from '../profiling/personal';
 import { personalInSegment } from '../profiling/personal-in-segment';
 import type { CodedColumn } from '../reading/plain/column-coder';
 import { NotPlain } from '../reading/plain/field-index';
@@ -74,7 +75,7 @@ export const codeSegment: Task<CodePayload, CodeAnswer> = (payload, control) => 
   const missing = new Set(['', ...choices.missing]);
   const personal =
     payload.personal ?? coder.columns.map((column, position) => personalInSegment(header[position], column, missing));
-  const key = Buffer.from(payload.key);
+  const key = new KeyedHash(Buffer.from(payload.key));
   const contents = coder.columns.map((column, position) => {
     if (control.cancelled()) throw new Error('cancelled');
     // Copied: what deflate gives is a view on a larger buffer.
@@ -87,7 +88,7 @@ export const codeSegment: Task<CodePayload, CodeAnswer> = (payload, control) => 
   return { notPlain: null, rows: coder.rows, contents, keys, styles: coder.columns.map(({ style }) => style), personal };
 };
 
-function hashed(column: CodedColumn, key: Buffer, missing: ReadonlySet<string>): PackedColumn {
+function hashed(column: CodedColumn, key: KeyedHash, missing: ReadonlySet<string>): PackedColumn {
   const { codes, texts } = textsOfCoded(column);
-  return packTexts({ codes, texts: texts.map((text) => (missing.has(text) ? text : hashText(key, text))) });
+  return packTexts({ codes, texts: texts.map((text) => (missing.has(text) ? text : key.of(text))) });
 }

@@ -27,7 +27,15 @@ const choices: ReadingChoices = {
 const control: TaskControl = { cancelled: () => false, progress: () => undefined, transfer: () => undefined };
 
 function stored(values: readonly string[], segmentRows: number, sign = '.'): Uint8Array[] {
-  const form = { delimiter: 59, trim: false, width: 1, mostBytes: 1000, sign: sign.charCodeAt(0), seed: 3, mostRows: segmentRows };
+  const form = {
+    delimiter: 59,
+    trim: false,
+    width: 1,
+    mostBytes: 1000,
+    sign: sign.charCodeAt(0),
+    seed: 3,
+    mostRows: segmentRows,
+  };
   const coder = new SegmentCoder(form);
   const contents: Uint8Array[] = [];
   for (let from = 0; from < values.length; from += segmentRows) {
@@ -58,7 +66,9 @@ const columns = fc
     decimals: fc.integer({ min: 0, max: 3 }),
     stripped: fc.boolean(),
     values: fc.array(number, { minLength: 1, maxLength: 300 }),
-    odd: fc.array(fc.constantFrom('', 'NA', '-999', '-999', '9999', 'x', '1e3', '+5', 'Inf', '007', '0x1', ' '), { maxLength: 12 }),
+    odd: fc.array(fc.constantFrom('', 'NA', '-999', '-999', '9999', 'x', '1e3', '+5', 'Inf', '007', '0x1', ' '), {
+      maxLength: 12,
+    }),
     every: fc.integer({ min: 2, max: 40 }),
   })
   .map(({ decimals, stripped, values, odd, every }) =>
@@ -100,7 +110,7 @@ describe('the profile of a stored column', () => {
     const found = profileNumbers('c', 0, contents.map((content) => unpack(inflateSegment(content))), chosen, null);
     expect(found).toEqual(byTexts('c', contents, null, chosen));
     // Under another decimal sign these are texts.
-    expect(profileStored({ name: 'c', position: 0, contents, choices, personal: null, outcome: null }, control).kind).toBe('categorical');
+    expect(profileStored({ name: 'c', position: 0, contents, choices, personal: null, outcome: null }, control)).toMatchObject({ kind: 'categorical' });
   }); // prettier-ignore
 
   it('counts hashes without a dictionary of them', () => {

@@ -55,11 +55,11 @@ export class ColumnCoder implements CodedColumn {
     this.texts.clear();
   }
 
-  /** Adds this column's fields of a batch and folds them into the hashes of the rows. */
-  add(bytes: Uint8Array, index: FieldIndex, hashes: RowHashes): void {
+  /** Adds this column's fields of a batch (`words` is a view on the whole of `bytes`) and folds them into the hashes of the rows. */
+  add(bytes: Uint8Array, words: DataView, index: FieldIndex, hashes: RowHashes): void {
     if (!this.decided) this.decide(bytes, index);
-    if (this.style === null) this.addTexts(bytes, index, hashes);
-    else this.addNumbers(bytes, index, this.style, hashes);
+    if (this.style === null) this.addTexts(bytes, words, index, hashes);
+    else this.addNumbers(bytes, words, index, this.style, hashes);
     this.rows += index.rows;
   }
 
@@ -82,7 +82,7 @@ export class ColumnCoder implements CodedColumn {
     this.decided = true;
   }
 
-  private addNumbers(bytes: Uint8Array, index: FieldIndex, style: NumberStyle, hashes: RowHashes): void {
+  private addNumbers(bytes: Uint8Array, words: DataView, index: FieldIndex, style: NumberStyle, hashes: RowHashes): void {
     const { cells, texts, width } = this;
     const { starts, ends, rows } = index;
     const { one, two } = hashes;
@@ -127,7 +127,7 @@ export class ColumnCoder implements CodedColumn {
         a = numberHashOne(whole, decimals);
         b = numberHashTwo(whole, decimals);
       } else {
-        const code = texts.codeOf(bytes, start, end);
+        const code = texts.codeOf(bytes, words, start, end);
         cell = textBase + code;
         a = texts.rowOne[code];
         b = texts.rowTwo[code];
@@ -139,13 +139,13 @@ export class ColumnCoder implements CodedColumn {
     }
   }
 
-  private addTexts(bytes: Uint8Array, index: FieldIndex, hashes: RowHashes): void {
+  private addTexts(bytes: Uint8Array, words: DataView, index: FieldIndex, hashes: RowHashes): void {
     const { cells, texts, width } = this;
     const { starts, ends, rows } = index;
     const { one, two } = hashes;
     const first = this.rows;
     for (let row = 0, field = this.position; row < rows; row++, field += width) {
-      const code = texts.codeOf(bytes, starts[field], ends[field]);
+      const code = texts.codeOf(bytes, words, starts[field], ends[field]);
       cells[first + row] = textBase + code;
       one[row] = Math.imul(one[row] ^ texts.rowOne[code], 0x0100_0193);
       const turned = two[row];

@@ -59,6 +59,8 @@ export class FieldIndex {
     let row = 0;
     let field = 0;
     let rowEnd = width;
+    // Bytes above this end no field: most of a text is told by one comparison.
+    const ordinary = Math.max(delimiter, CR);
     while (row < rows && at < to) {
       let start = at;
       if (trim) while (isBlank(bytes[start], delimiter)) start++;
@@ -71,7 +73,8 @@ export class FieldIndex {
         if (special[bytes[at]] !== 1) throw new NotPlain('text after a closing quote');
       } else {
         at = start;
-        while (special[bytes[at]] === 0) at++;
+        let byte = bytes[at];
+        while (byte > ordinary || special[byte] === 0) byte = bytes[++at];
         end = at;
         if (trim) while (end > start && isBlank(bytes[end - 1], delimiter)) end--;
       }

@@ -49,13 +49,14 @@ export class SegmentCoder {
    */
   add(bytes: Uint8Array): void {
     const { index, one, two, form } = this;
+    const words = new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength);
     let at = 0;
     while (at < bytes.length) {
       at = index.fill(bytes, at, bytes.length, form.mostRows - this.rows);
       if (index.rows === 0) throw new Error('A segment was given more records than it holds');
       one.fill(0x11c9_dc5);
       two.fill(0x1e37_79b9);
-      for (const coder of this.coders) coder.add(bytes, index, { one, two });
+      for (const coder of this.coders) coder.add(bytes, words, index, { one, two });
       for (let row = 0; row < index.rows; row++) this.keys[this.rows + row] = (one[row] >>> 0) * 0x20_0000 + (two[row] >>> 11);
       this.rows += index.rows;
     }
