@@ -1,4 +1,5 @@
-import { Engine, codedColumns, type CodedProblem, type KernelKind } from '@tallystone/numeric/engine/index';
+import { Engine, codedColumns, type CodedProblem } from '@tallystone/numeric/engine/index';
+import type { KernelKind } from '@tallystone/numeric/engine/kernels/kernels';
 import { Generator } from '@tallystone/numeric/random/generator';
 
 const ROWS = 6000;
