@@ -20,6 +20,11 @@ export function requireFinite(name: string, values: ArrayLike<number>): void {
   }
 }
 
+/** Throws for NaN; infinite is a number. */
+export function requireNumber(name: string, value: number): void {
+  if (Number.isNaN(value)) throw new NumericError('not-a-number', `${name} is NaN.`, { name });
+}
+
 /** Weights must be finite and not negative, with a total that is positive and finite. Returns the total. */
 export function requireWeights(name: string, weights: ArrayLike<number>): number {
   let total = 0;

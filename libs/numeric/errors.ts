@@ -15,6 +15,7 @@ export type NumericErrorCode =
 
 export type Place = Readonly<Record<string, number | string>>;
 
+/** What is wrong with an argument: a stable code, a sentence, and the place (`where`) for the caller to name to a person. */
 export class NumericError extends Error {
   constructor(
     readonly code: NumericErrorCode,

@@ -1,3 +1,4 @@
+import { requireFinite, requireOutcome, requireSameLength } from '../checks';
 import { NumericError } from '../errors';
 
 /** Which end of a bin belongs to it: "left" is [a, b), "right" is (a, b]. */
@@ -5,11 +6,15 @@ export type Closure = 'left' | 'right';
 
 /**
  * The bin of one value: the number of edges at or below it (left-closed), or below it (right-closed).
+ * @param value a known value; it may be infinite
  * @param edges strictly ascending; k edges make k + 1 bins, numbered from 0
+ * @param closed which end of a bin belongs to it
+ * @throws NumericError for NaN
  * @example binOf(30, [25, 30, 37], 'left') // 2
  * @example binOf(30, [25, 30, 37], 'right') // 1
  */
 export function binOf(value: number, edges: readonly number[], closed: Closure): number {
+  if (Number.isNaN(value)) throw new NumericError('not-a-number', 'A value that is not known has no bin.', { name: 'value' });
   let low = 0;
   let high = edges.length;
   while (low < high) {
@@ -21,7 +26,7 @@ export function binOf(value: number, edges: readonly number[], closed: Closure):
   return low;
 }
 
-/** Edges must be finite and strictly ascending, at most 255 of them (a bin is one byte). */
+/** Edges must be finite and strictly ascending, at most 255 of them (a bin is one byte). @throws NumericError that names the edge */
 export function requireEdges(edges: readonly number[]): void {
   if (edges.length > 255) throw new NumericError('out-of-range', `${edges.length} edges; 255 is the most.`, { name: 'edges' });
   edges.forEach((edge, i) => {
@@ -55,8 +60,12 @@ export interface BinCounts {
 
 /**
  * Rows (unweighted) and goods and bads (weighted) of each bin.
- * @param bins bin of each row, below `count`
- * @param outcome 1 good, 0 bad
+ * @param bins bin of each of n rows, a whole number from 0 to below `count`
+ * @param outcome n values, 1 good, 0 bad
+ * @param count number of bins
+ * @param weights n weights of at least 0; absent = 1 each
+ * @throws NumericError for different lengths, a bin or an outcome outside, a weight that is negative or NaN (names its row)
+ * @example countBins([0, 1, 1], [1, 0, 1], 2).bads // [0, 1]
  */
 export function countBins(
   bins: ArrayLike<number>,
@@ -64,14 +73,21 @@ export function countBins(
   count: number,
   weights?: ArrayLike<number>,
 ): BinCounts {
+  requireSameLength('outcome', outcome.length, bins.length);
+  requireOutcome(outcome);
+  if (weights) {
+    requireSameLength('weights', weights.length, bins.length);
+    requireFinite('weights', weights);
+  }
   const rows = new Float64Array(count);
   const goods = new Float64Array(count);
   const bads = new Float64Array(count);
   for (let i = 0; i < bins.length; i++) {
     const bin = bins[i];
-    if (!(bin < count))
+    if (!(bin >= 0 && bin < count && Number.isInteger(bin)))
       throw new NumericError('out-of-range', `Row ${i} lies in bin ${bin} of ${count}.`, { name: 'bins', index: i });
     const weight = weights ? weights[i] : 1;
+    if (weight < 0) throw new NumericError('out-of-range', `Row ${i} has weight ${weight}.`, { name: 'weights', index: i });
     rows[bin] += 1;
     if (outcome[i] === 1) goods[bin] += weight;
     else bads[bin] += weight;

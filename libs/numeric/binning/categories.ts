@@ -14,6 +14,10 @@ const RARE_PART = 0.2;
  * Groups categories: ordered by bad rate (lowest first), then merged with the largest information value under the constraints. For a two-valued
  * outcome the best grouping is contiguous in that order, so the merge is exact for the order found. Rare categories (below a fifth of the smallest
  * share, or without a good or a bad) are pooled and take their place by the rate of the pool.
+ * @param categories weighted goods and bads, and rows, of each category
+ * @param constraints what every group has to satisfy; its trend is not used
+ * @param totals goods and bads of the whole characteristic; default: those of the categories
+ * @throws NumericError for NaN (names the category) and what `classNumeric` refuses
  * @returns numbers of categories by group, lowest bad rate first; within a group in the order given
  * @example classCategories([{ goods: 90, bads: 10, rows: 100 }, { goods: 50, bads: 50, rows: 100 }], constraints).groups // [[0], [1]]
  * Source: L. Breiman et al., Classification and Regression Trees, 1984, theorem 4.5 (from memory); W. D. Fisher, JASA 53, 1958.

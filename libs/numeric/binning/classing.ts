@@ -37,8 +37,11 @@ export interface NumericClassing {
  * solutions with equal information value the one with fewer bins is taken. When even a single bin breaks a constraint, a single bin is returned.
  *
  * @param fine goods and bads (weighted) and rows of each fine class in the order of values
+ * @param constraints what every bin has to satisfy
  * @param totals goods and bads of the whole characteristic when special or missing values have bins of their own; default: those of `fine`
- * @example classNumeric({ goods: [10, 20, 60], bads: [20, 18, 10], rows: [30, 38, 70] }, constraints).cuts // [2]
+ * @returns cuts (numbers of fine classes), information value in nats and the trend found
+ * @throws NumericError for NaN, negative counts, different lengths
+ * @example classNumeric({ goods: [10, 20, 60], bads: [20, 18, 10], rows: [30, 38, 70] }, constraints).cuts // [1, 2] where nothing forbids three bins
  * Source: R. Bellman, Dynamic Programming, 1957; W. D. Fisher, On grouping for maximum homogeneity, JASA 53, 1958 (contiguous optimal grouping).
  */
 export function classNumeric(

@@ -5,7 +5,9 @@ import { NumericError } from '../errors';
  * Edges of fine classes: cuts at the quantiles of the known values, left-closed, at most `count` classes, each edge the shortest decimal that still
  * separates the two values on its sides. A variable with at most `count` different values gets one class for each.
  * @param values known values only, in any order
+ * @param count most classes wanted, 1 to 250
  * @returns strictly ascending edges, at most count - 1
+ * @throws NumericError for no value, NaN or an infinite one (names its place), a count outside
  * @example fineEdges(Float64Array.of(1.237, 1.81, 2.46, 9.9), 4) // [1.8, 2, 9]
  */
 export function fineEdges(values: Float64Array, count: number): number[] {
@@ -36,7 +38,11 @@ function quantileStarts(starts: readonly number[], rows: number, count: number):
   return chosen;
 }
 
-/** The shortest decimal c with below < c <= value; of equally short ones the largest. */
+/**
+ * The shortest decimal c with below < c <= value; of equally short ones the largest.
+ * @param below and value finite, below < value
+ * @example shortestBetween(1.237, 1.81) // 1.8
+ */
 export function shortestBetween(below: number, value: number): number {
   if (below < 0 && value >= 0) return 0;
   const largest = Math.max(Math.abs(below), Math.abs(value));

@@ -23,8 +23,10 @@ export interface WeightOfEvidence {
  * WOE_i = ln[(g_i/G) / (b_i/B)], IV = sum (g_i/G - b_i/B) WOE_i. Smoothing s replaces g_i/G by (g_i + s)/(G + sK) and b_i/B by
  * (b_i + s)/(B + sK), K the bins that have rows. A bin without rows has WOE 0 and is not in K. Higher WOE means lower risk.
  *
- * @param goods weighted number of goods of each bin
+ * @param goods weighted number of goods of each of K bins, at least 0
  * @param bads weighted number of bads of each bin
+ * @param smoothing amount (in rows) and when it is added
+ * @returns WOE in nats by bin, what each bin adds to the information value, their sum, and whether smoothing took place
  * @throws ZeroCellError where "never" meets a bin with rows but no good or no bad
  * @throws NumericError for different lengths, NaN, negative counts, or no good or no bad at all
  * @example weightOfEvidence([300, 250, 150], [30, 60, 110], { amount: 0.5, when: 'zero-cell' }).woe // [1.0498, 0.1744, -0.9426]

@@ -1,6 +1,6 @@
 import { CholeskyDecomposition, EigenvalueDecomposition, Matrix, inverse } from 'ml-matrix';
 import { NumericError } from '../errors';
-import { requireFinite } from '../checks';
+import { requireFinite, requireSameLength, requireWeights } from '../checks';
 import { Design } from '../penalised/design';
 import { rootCurvature } from '../penalised/loss';
 import { linearPredictor } from '../penalised/optimality';
@@ -9,12 +9,22 @@ import { requireProblem } from '../penalised/validation';
 
 function designOf(columns: readonly Float64Array[], weights?: Float64Array): Design {
   if (columns.length === 0) throw new NumericError('no-rows', 'There is no column.', { name: 'columns' });
-  columns.forEach((column, j) => requireFinite(`column ${j}`, column));
+  columns.forEach((column, j) => {
+    requireSameLength(`column ${j}`, column.length, columns[0].length);
+    requireFinite(`column ${j}`, column);
+  });
+  if (weights) {
+    requireSameLength('weights', weights.length, columns[0].length);
+    requireWeights('weights', weights);
+  }
   return new Design(columns, columns[0].length, weights);
 }
 
 /**
  * Correlation matrix of columns (Pearson, weighted if weights are given), p x p. A column without variance has NaN with every column.
+ * @param columns p arrays of n values, p at least 1
+ * @param weights n weights of at least 0; absent = 1 each
+ * @throws NumericError for no column, different lengths, NaN (names column and row)
  * @example correlation([a, b])[0][1]
  */
 export function correlation(columns: readonly Float64Array[], weights?: Float64Array): number[][] {
@@ -40,6 +50,8 @@ const COLLINEAR = 1e-10;
  * Classical variance inflation factors 1/(1 - R_j^2), R_j^2 of column j on the others: the diagonal of the inverse correlation matrix. Columns
  * without variance give NaN; when the columns are exactly collinear, those involved give Infinity.
  * @param columns p arrays of n values; for a scorecard the WOE columns that are kept
+ * @param weights n weights of at least 0; absent = 1 each
+ * @throws NumericError as `correlation`
  * @example varianceInflation([a, b]) // both 1/(1 - r^2)
  * Source: D. A. Belsley, E. Kuh and R. E. Welsch, Regression Diagnostics, Wiley 1980.
  */
@@ -65,7 +77,10 @@ export function varianceInflation(columns: readonly Float64Array[], weights?: Fl
 
 /**
  * Condition indices of the correlation matrix: sqrt(largest eigenvalue / each eigenvalue), ascending; the last is the condition number.
- * Columns without variance are left out. Exact collinearity gives Infinity.
+ * Columns without variance are left out; `largest` is NaN when none is left. Exact collinearity gives Infinity.
+ * @param columns and weights as for `correlation`
+ * @throws NumericError as `correlation`
+ * @example conditionIndex([a, b]).largest // sqrt((1 + |r|)/(1 - |r|))
  * Source: as `varianceInflation`, chapter 3, for centred columns.
  */
 export function conditionIndex(
@@ -86,6 +101,10 @@ export function conditionIndex(
 /**
  * Standard errors of an unpenalised fit from the inverse information matrix, and the covariance, intercept first. For a penalised fit they have
  * no such meaning: resample instead.
+ * @param problem as for `fitAt`; its penalty is not used
+ * @param fit a converged unpenalised fit of it
+ * @returns errors of intercept and coefficients on the scale of x, and the (p + 1) x (p + 1) covariance
+ * @example standardErrors(problem, fitAt(problem, 0)).coefficients[0]
  * @throws NumericError "singular" when columns are collinear or a column has no variance
  * Source: D. W. Hosmer and S. Lemeshow, Applied Logistic Regression, Wiley 2000, section 2.4.
  */

@@ -16,6 +16,9 @@ export const MOST_CHALLENGER_ROWS = 5000;
  * Unpenalised logistic regression by a library that shares nothing with this one: plain gradient descent of ml-logistic-regression 2.0.0, which has
  * neither intercept nor penalty nor weights. A constant column is added, columns are standardised and the result is brought back to the scale of x.
  * It agrees with the unpenalised fit to about 1e-3. Penalty, multipliers and limits of the problem are not used.
+ * @param problem as for `fitAt`
+ * @param options `steps` of gradient descent, default 3000
+ * @returns intercept and coefficients of ln(good:bad) on the scale of x
  * @throws NumericError for more than 5,000 rows, weights that differ, an offset
  * @example fitForeignChallenger({ columns, outcome, penalty: { mixing: 1, standardize: true } }).coefficients
  */

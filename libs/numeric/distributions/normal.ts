@@ -4,19 +4,23 @@
  */
 import erfc from '@stdlib/math-base-special-erfc';
 import erfcinv from '@stdlib/math-base-special-erfcinv';
-import { requireThat } from '../checks';
+import { requireNumber, requireThat } from '../checks';
 
-/** P(Z <= z) of the standard normal. @example normalCdf(1.96) // 0.975002 */
+/** P(Z <= z) of the standard normal. @throws NumericError for NaN @example normalCdf(1.96) // 0.975002 */
 export function normalCdf(z: number): number {
+  requireNumber('z', z);
   return 0.5 * erfc(-z / Math.SQRT2);
 }
 
-/** P(Z > z) of the standard normal. @example normalTail(1.6448536269514722) // 0.05 */
+/**
+ * P(Z > z) of the standard normal, computed as a tail. A NaN is what a test without a standard error passes on, and comes back as NaN.
+ * @example normalTail(1.6448536269514722) // 0.05
+ */
 export function normalTail(z: number): number {
   return 0.5 * erfc(z / Math.SQRT2);
 }
 
-/** P(|Z| > |z|): the two-sided p-value of a standard normal statistic. @example normalTwoSided(1.959964) // 0.05 */
+/** P(|Z| > |z|): the two-sided p-value of a standard normal statistic; NaN for NaN, as `normalTail`. @example normalTwoSided(1.959964) // 0.05 */
 export function normalTwoSided(z: number): number {
   return erfc(Math.abs(z) / Math.SQRT2);
 }

@@ -244,6 +244,8 @@ class SecondMethod {
 /**
  * Fits by accelerated proximal gradient with restart: the validator's second method. Its coefficients agree with those of coordinate descent to
  * about 1e-6 where the optimum is unique. Arguments as for `fitAt`.
+ * @param problem and lambda as for `fitAt`
+ * @param options `tolerance` of the residual (default 1e-9) and `mostIterations` (default 50,000)
  * @throws NumericError as `fitAt`
  * @returns status "iteration-limit" when the residual is still above the tolerance; separation is not told apart here
  * @example fitIndependently({ columns, outcome, penalty: { mixing: 1, standardize: true } }, 0.01).coefficients

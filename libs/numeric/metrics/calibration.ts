@@ -1,4 +1,4 @@
-import { requireThat } from '../checks';
+import { requireFinite, requireThat } from '../checks';
 import { chiSquareTail } from '../distributions/tails';
 import { NumericError } from '../errors';
 import { quantilesType7, requireBothClasses } from './ordering';
@@ -47,6 +47,9 @@ function withoutEmpty(edges: readonly number[], pd: ArrayLike<number>): number[]
  * it. Degrees of freedom are G - 2 on the rows the model was developed on and G on others, G counted after merging.
  * @param pd n probabilities of bad
  * @param outcome n values, 1 good, 0 bad
+ * @param options `groups` asked for, default 10; `development`: whether the model was developed on these rows
+ * @returns statistic, groups and p-value (null without a degree of freedom); Infinity where a group that expects no bad, or nothing else, is wrong
+ * @throws NumericError for a PD outside [0, 1] or NaN (names its row), different lengths, no row, fewer than two groups
  * @example hosmerLemeshow(pd, outcome, { groups: 10, development: true }).degreesOfFreedom // 8
  * Source: D. W. Hosmer and S. Lemeshow, Applied Logistic Regression, Wiley 2000, section 5.2.2.
  */
@@ -106,7 +109,10 @@ export interface Calibration {
   /** Mean PD and bad rate, weighted. */
   readonly meanPd: number;
   readonly badRate: number;
-  /** False when the likelihood has no finite optimum (the PDs separate goods from bads): slope and intercept are then not usable. */
+  /**
+   * False when the likelihood has no finite optimum (the PDs separate goods from bads) or none at all (every PD is the same): slope, intercept and
+   * their errors are NaN then. Calibration in the large is there in any case.
+   */
   readonly converged: boolean;
 }
 
@@ -186,6 +192,7 @@ function calibrationLine(x: Float64Array, bad: Float64Array, weights: ArrayLike<
  * Calibration in the large, calibration slope and intercept, with model standard errors (weights count as repeated rows).
  * @param pd n probabilities of bad, all strictly between 0 and 1
  * @param outcome n values, 1 good, 0 bad
+ * @param weights n weights of at least 0; absent = 1 each
  * @throws NumericError for a PD of 0 or 1 (names its row), one class only
  * @example calibration(pd, outcome).slope // 1 on the rows an unpenalised model was developed on
  * Source: D. R. Cox, Two further applications of a model for binary regression, Biometrika 45, 1958.
@@ -208,26 +215,34 @@ export function calibration(pd: ArrayLike<number>, outcome: ArrayLike<number>, w
   requireBothClasses(total - bads, bads);
   const large = calibrationLine(x, bad, weights, false);
   const line = calibrationLine(x, bad, weights, true);
+  const counts = (i: number): boolean => !weights || weights[i] > 0;
+  const first = x.findIndex((_, i) => counts(i));
+  const spread = x.some((value, i) => counts(i) && value !== x[first]);
+  const converged = spread && large.converged && line.converged;
   return {
     inTheLarge: large.a,
     inTheLargeStandardError: large.errorA,
-    slope: line.b,
-    slopeStandardError: line.errorB,
-    intercept: line.a,
-    interceptStandardError: line.errorA,
+    slope: converged ? line.b : NaN,
+    slopeStandardError: converged ? line.errorB : NaN,
+    intercept: converged ? line.a : NaN,
+    interceptStandardError: converged ? line.errorA : NaN,
     meanPd: meanPd / total,
     badRate: bads / total,
-    converged: large.converged && line.converged,
+    converged,
   };
 }
 
 /**
  * Intercept of ln(good:bad) moved from the sample's bad rate to the population's:
  * b0* = b0 + ln{ [(1-t)/t] [y/(1-y)] }, t population and y sample bad rate.
+ * @param intercept b0 of the model of ln(good:bad)
+ * @param sampleBadRate and populationBadRate strictly between 0 and 1
+ * @throws NumericError for rates outside, and for NaN
  * @example priorCorrectedIntercept(0.85, 0.3, 0.05) // 2.9471
  * Source: G. King and L. Zeng, Political Analysis 9(2):137-163, 2001, eq. (7), signs changed for ln(good:bad) (formula from memory).
  */
 export function priorCorrectedIntercept(intercept: number, sampleBadRate: number, populationBadRate: number): number {
+  requireFinite('intercept', [intercept]);
   requireThat(sampleBadRate > 0 && sampleBadRate < 1, 'sampleBadRate', 'a bad rate lies strictly between 0 and 1.');
   requireThat(populationBadRate > 0 && populationBadRate < 1, 'populationBadRate', 'a bad rate lies strictly between 0 and 1.');
   return intercept + Math.log(((1 - populationBadRate) / populationBadRate) * (sampleBadRate / (1 - sampleBadRate)));

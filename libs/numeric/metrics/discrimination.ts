@@ -1,13 +1,15 @@
-import { requireFinite, requireOutcome, requireSameLength, requireWeights } from '../checks';
+import { requireFinite, requireOutcome, requireSameLength, requireThat, requireWeights } from '../checks';
 import { normalQuantile, normalTwoSided } from '../distributions/tails';
 import { ascendingOrder, requireBothClasses, scoresByOutcome } from './ordering';
+import { requireLevel } from './wilson';
 
 /**
  * Area under the ROC curve: the probability that a good scores above a bad, ties one half.
  * @param scores n scores, higher = good
  * @param outcome n values, 1 good, 0 bad
  * @param weights n weights of at least 0; absent = 1 each
- * @throws NumericError for one class only, NaN, different lengths
+ * @returns 0 to 1; 1/2 for scores that are all equal
+ * @throws NumericError for one class only, NaN (names its row), different lengths
  * @example auc([1, 2, 3, 4], [0, 0, 1, 1]) // 1
  * Source: J. A. Hanley and B. J. McNeil, Radiology 143, 1982.
  */
@@ -15,8 +17,15 @@ export function auc(scores: ArrayLike<number>, outcome: ArrayLike<number>, weigh
   return weights ? weightedAuc(scores, outcome, weights) : unweightedAuc(scores, outcome);
 }
 
-/** Gini coefficient (accuracy ratio): 2 AUC - 1. */
+/**
+ * Gini coefficient (accuracy ratio): 2 AUC - 1.
+ * @param areaUnderCurve 0 to 1
+ * @throws NumericError for an area outside, and for NaN
+ * @example gini(0.75) // 0.5
+ * Source: B. Engelmann, E. Hayden and D. Tasche, Testing rating accuracy, Risk, January 2003.
+ */
 export function gini(areaUnderCurve: number): number {
+  requireThat(areaUnderCurve >= 0 && areaUnderCurve <= 1, 'area', `the area is ${areaUnderCurve}; it lies between 0 and 1.`);
   return 2 * areaUnderCurve - 1;
 }
 
@@ -79,7 +88,16 @@ function weightedAuc(scores: ArrayLike<number>, outcome: ArrayLike<number>, weig
   return won / (goods * badsBelow);
 }
 
-/** Points of the ROC curve: shares of bads and of goods at or below each distinct score, ascending. */
+/**
+ * Points of the ROC curve: shares of bads and of goods at or below each distinct score, ascending.
+ * @param scores n scores, higher = good
+ * @param outcome n values, 1 good, 0 bad
+ * @param weights n weights of at least 0; absent = 1 each
+ * @returns one point for each distinct score; the last has both shares 1
+ * @throws NumericError as `auc`
+ * @example rocCurve([1, 2, 3], [0, 1, 1])[0] // { score: 1, shareOfBads: 1, shareOfGoods: 0 }
+ * Source: as `auc`.
+ */
 export function rocCurve(
   scores: ArrayLike<number>,
   outcome: ArrayLike<number>,
@@ -106,8 +124,13 @@ export interface KolmogorovSmirnov {
 }
 
 /**
- * Kolmogorov-Smirnov statistic between the score distributions of bads and goods.
+ * Kolmogorov-Smirnov statistic between the score distributions of bads and goods. Of several scores with the largest distance the lowest is named.
+ * @param scores n scores, higher = good
+ * @param outcome n values, 1 good, 0 bad
+ * @param weights n weights of at least 0; absent = 1 each
+ * @throws NumericError as `auc`
  * @example kolmogorovSmirnov([1, 2, 3, 4], [0, 0, 1, 1]) // { ks: 1, at: 2 }
+ * Source: N. V. Smirnov, 1948.
  */
 export function kolmogorovSmirnov(
   scores: ArrayLike<number>,
@@ -224,11 +247,16 @@ function covarianceOfAreas(a: Placements, b: Placements): number {
 
 /**
  * AUC with DeLong's standard error (divisors m - 1 and n - 1) and a symmetric interval clipped to [0, 1]. Rows count once each.
- * With a single good or a single bad the standard error does not exist and is NaN.
+ * With a single good or a single bad the standard error does not exist and is NaN, as are the limits.
+ * @param scores n scores, higher = good
+ * @param outcome n values, 1 good, 0 bad
+ * @param level of confidence, strictly between 0 and 1
+ * @throws NumericError for one class only, NaN (names its row), different lengths, a level outside
  * @example delong([1, 2, 3, 4, 5], [0, 0, 1, 0, 1]).auc // 0.8333
  * Source: E. R. DeLong, D. M. DeLong and D. L. Clarke-Pearson, Biometrics 44(3):837-845, 1988.
  */
 export function delong(scores: ArrayLike<number>, outcome: ArrayLike<number>, level = 0.95): DeLong {
+  requireLevel(level);
   const placed = placements(scores, outcome);
   const standardError = Math.sqrt(covarianceOfAreas(placed, placed));
   const reach = normalQuantile(0.5 + level / 2) * standardError;
@@ -237,7 +265,12 @@ export function delong(scores: ArrayLike<number>, outcome: ArrayLike<number>, le
 
 /**
  * DeLong's test of two scores on the same rows. Use it on hold-out and out-of-time rows; on rows that both models were developed on only the
- * difference is of use. Two scores that order every pair alike have difference 0, standard error 0, z 0 and p-value 1.
+ * difference is of use. Two scores that order every pair alike have difference 0, standard error 0, z 0 and p-value 1. With a single good or a
+ * single bad standard error, z, p-value and limits are NaN.
+ * @param a and b n scores each, higher = good
+ * @param outcome n values, 1 good, 0 bad
+ * @throws NumericError as `delong`
+ * @example pairedDelong([1, 2, 3, 4], [1, 3, 2, 4], [0, 0, 1, 1]).difference // 0.25
  * Source: as `delong`.
  */
 export function pairedDelong(a: ArrayLike<number>, b: ArrayLike<number>, outcome: ArrayLike<number>): PairedDeLong {

@@ -21,6 +21,9 @@ export function requireForecast(pd: ArrayLike<number>, outcome: ArrayLike<number
  * Brier score: weighted mean of (PD - bad)^2, bad = 1 - outcome.
  * @param pd n probabilities of bad
  * @param outcome n values, 1 good, 0 bad
+ * @param weights n weights of at least 0; absent = 1 each
+ * @returns 0 (every forecast certain and right) to 1
+ * @throws NumericError for a PD outside [0, 1] or NaN (names its row), different lengths, no row, weights that add up to 0
  * @example brier([0.1, 0.8], [1, 0]) // 0.025
  * Source: G. W. Brier, Monthly Weather Review 78, 1950.
  */
@@ -36,7 +39,13 @@ export function brier(pd: ArrayLike<number>, outcome: ArrayLike<number>, weights
 
 /**
  * Logarithmic loss: weighted mean of -ln P(what happened). A certain forecast that was wrong gives Infinity.
+ * @param pd n probabilities of bad
+ * @param outcome n values, 1 good, 0 bad
+ * @param weights n weights of at least 0; absent = 1 each
+ * @returns nats per row, at least 0
+ * @throws NumericError as `brier`
  * @example logLoss([0.5], [1]) // 0.6931
+ * Source: I. J. Good, Rational decisions, J. Royal Statistical Society B 14, 1952.
  */
 export function logLoss(pd: ArrayLike<number>, outcome: ArrayLike<number>, weights?: ArrayLike<number>): number {
   const total = requireForecast(pd, outcome, weights);
@@ -59,7 +68,10 @@ export interface MurphyDecomposition {
 
 /**
  * Murphy's decomposition of grouped forecasts: Brier = reliability - resolution + uncertainty.
- * @param forecast PD of each group, rows and bads its counts (or weights)
+ * @param forecast PD of each of G groups, 0 to 1
+ * @param rows and bads counts (or weights) of each group, 0 <= bads <= rows; a group without rows adds nothing
+ * @throws NumericError for different lengths, values outside or NaN (names the group), no row at all
+ * @example murphyOfGroups([0.1, 0.4], [100, 100], [10, 40]).reliability // 0
  * Source: A. H. Murphy, J. Applied Meteorology 12:595-600, 1973.
  */
 export function murphyOfGroups(
@@ -72,6 +84,14 @@ export function murphyOfGroups(
   let total = 0;
   let totalBads = 0;
   for (let g = 0; g < forecast.length; g++) {
+    // Sums of weights can miss one another by a rounding.
+    const holds = forecast[g] >= 0 && forecast[g] <= 1 && bads[g] >= 0 && bads[g] <= rows[g] * (1 + 1e-9) && rows[g] < Infinity;
+    if (!holds) {
+      throw new NumericError('out-of-range', `Group ${g} has PD ${forecast[g]}, ${rows[g]} rows and ${bads[g]} bads.`, {
+        name: 'groups',
+        index: g,
+      });
+    }
     total += rows[g];
     totalBads += bads[g];
   }
@@ -91,11 +111,20 @@ export function murphyOfGroups(
     reliability,
     resolution,
     uncertainty,
-    skill: (resolution - reliability) / uncertainty,
+    skill: uncertainty === 0 ? NaN : (resolution - reliability) / uncertainty,
   };
 }
 
-/** Murphy's decomposition with rows of equal PD as groups: exact for a scorecard, whose PDs take few values. */
+/**
+ * Murphy's decomposition with rows of equal PD as groups: exact for a scorecard, whose PDs take few values. With equal PDs throughout the resolution
+ * is 0 and the reliability the squared distance of the PD from the bad rate.
+ * @param pd n probabilities of bad
+ * @param outcome n values, 1 good, 0 bad
+ * @param weights n weights of at least 0; absent = 1 each
+ * @throws NumericError as `brier`
+ * @example murphyDecomposition([0.5, 0.5], [1, 0]).reliability // 0
+ * Source: as `murphyOfGroups`.
+ */
 export function murphyDecomposition(
   pd: ArrayLike<number>,
   outcome: ArrayLike<number>,
@@ -120,6 +149,11 @@ export function murphyDecomposition(
 
 /**
  * Spiegelhalter's test of calibration: z of the Brier score against its expectation under the forecasts.
+ * @param pd n probabilities of bad
+ * @param outcome n values, 1 good, 0 bad
+ * @returns z and its two-sided p-value; both NaN when every PD is 0, 1/2 or 1, where the score has no variance to test with
+ * @throws NumericError as `brier`
+ * @example spiegelhalter([0.2, 0.2, 0.2], [1, 1, 0]).z // 0.5774
  * Source: D. J. Spiegelhalter, Statistics in Medicine 5:421-433, 1986.
  */
 export function spiegelhalter(pd: ArrayLike<number>, outcome: ArrayLike<number>): { z: number; pValue: number } {

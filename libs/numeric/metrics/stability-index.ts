@@ -13,8 +13,10 @@ export interface StabilityPart {
  *
  * A band empty on both sides adds 0; a band empty on one side gives null unless a smoothing is stated, which is added to each count on both
  * sides. Used for characteristics (CSI) in the same way.
- * @param expected counts of the development sample by band
+ * @param expected counts of the development sample by band, each at least 0
  * @param actual counts of the compared sample by band
+ * @param smoothing added to each count on both sides, at least 0
+ * @throws NumericError for different lengths, negative counts, NaN (names its band), an empty side
  * @example populationStability([100, 200, 300], [120, 180, 300]) // about 0.0096
  * Source: S. Kullback and R. A. Leibler, 1951 (symmetric divergence); its use as an index of stability is common practice in the trade.
  */
@@ -23,7 +25,13 @@ export function populationStability(expected: ArrayLike<number>, actual: ArrayLi
   return parts.some(({ part }) => part === null) ? null : parts.reduce((sum, { part }) => sum + (part ?? 0), 0);
 }
 
-/** What each band adds to the population stability index. */
+/**
+ * What each band adds to the population stability index, with its two shares.
+ * @param expected and actual counts by band; smoothing as for `populationStability`
+ * @throws NumericError as `populationStability`
+ * @example stabilityParts([10, 0], [10, 5])[1].part // null
+ * Source: as `populationStability`.
+ */
 export function stabilityParts(expected: ArrayLike<number>, actual: ArrayLike<number>, smoothing = 0): StabilityPart[] {
   requireSameLength('actual', actual.length, expected.length);
   requireFinite('expected', expected);

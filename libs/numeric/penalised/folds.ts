@@ -55,7 +55,11 @@ const FOLD_TOLERANCE = 1e-7;
 
 /**
  * K-fold cross-validation of the penalty: every fold is fitted on the others at exactly the same lambdas, standardised with its own training rows.
- * @param folds fold of each row, 1..K, each with rows
+ * @param problem as for `fitAt`
+ * @param folds fold of each of n rows, 1..K, each with rows
+ * @param lambdas at least one, each at least 0, in any order
+ * @returns deviance per row (weighted mean of -2 log likelihood) by fold and lambda, mean, standard error, both choices; `failures` names fold and
+ *   lambda of every fit that did not converge
  * @throws NumericError for bad arguments and for a fold whose training rows have one class only (names the fold)
  * @example crossValidate(problem, folds, path.fits.map((fit) => fit.lambda)).oneStandardError
  * Source: L. Breiman et al., Classification and Regression Trees, 1984 (one-standard-error rule); mean and error as in J. Friedman et al., 2010.
@@ -159,7 +163,12 @@ export function fitFold(
   return { fold, weight: heldOut, deviance };
 }
 
-/** Mean, standard error sqrt(weighted mean of (fold - mean)^2 / (K - 1)) and the two rules of choice. */
+/**
+ * Mean, standard error sqrt(weighted mean of (fold - mean)^2 / (K - 1)) and the two rules of choice.
+ * @param lambdas and folds K results with one deviance for each lambda
+ * @example summarise([0.2, 0.1], folds).minimum // index of the smallest mean
+ * Source: as `crossValidate`.
+ */
 export function summarise(
   lambdas: readonly number[],
   folds: FoldResult[],

@@ -1,22 +1,29 @@
-import { requireFinite, requireOutcome, requireSameLength } from '../checks';
+import { requireFinite, requireOutcome, requireSameLength, requireWeights } from '../checks';
 
 /**
  * The logistic loss of y = 1 good: log(1 + e^eta) - y eta, with log(1 + e^x) as max(x, 0) + log1p(e^-|x|) so that no exponential overflows.
  */
 
-/** P(good) = 1/(1 + e^-eta), exact in both tails. */
+/** P(good) = 1/(1 + e^-eta), exact in both tails; NaN for NaN. @example probabilityOfGood(0) // 0.5 */
 export function probabilityOfGood(eta: number): number {
   const small = Math.exp(-Math.abs(eta));
   return eta >= 0 ? 1 / (1 + small) : small / (1 + small);
 }
 
-/** PD = 1/(1 + e^eta), exact in both tails. @example probabilityOfBad(0) // 0.5 */
+/** PD = 1/(1 + e^eta), exact in both tails; NaN for NaN. @example probabilityOfBad(0) // 0.5 */
 export function probabilityOfBad(eta: number): number {
   return probabilityOfGood(-eta);
 }
 
-/** PDs of a linear predictor. */
+/**
+ * PDs of a linear predictor.
+ * @param eta n values of ln(good:bad)
+ * @returns n probabilities of bad
+ * @throws NumericError for NaN and infinite values (names the row)
+ * @example probabilitiesOfBad([0, 2]) // [0.5, 0.1192]
+ */
 export function probabilitiesOfBad(eta: ArrayLike<number>): Float64Array {
+  requireFinite('eta', eta);
   return Float64Array.from(eta, probabilityOfBad);
 }
 
@@ -63,15 +70,20 @@ export function rootCurvature(eta: Float64Array, share: Float64Array, root: Floa
 
 /**
  * Deviance: 2 sum w_i [log(1 + e^eta_i) - y_i eta_i], weights as given (not normalised).
- * @param outcome n values, 1 good, 0 bad; eta n values of ln(good:bad)
- * @throws NumericError for different lengths or NaN
- * @example deviance(Uint8Array.of(1, 0), Float64Array.of(0, 0)) // 4 ln 2 = 2.7726
+ * @param outcome n values, 1 good, 0 bad
+ * @param eta n values of ln(good:bad)
+ * @param weights n weights of at least 0; absent = 1 each
+ * @throws NumericError for different lengths, NaN (names its row), weights that are negative or add up to 0
+ * @example deviance(Uint8Array.of(1, 0), Float64Array.of(0, 0)) // 2.7726, four times ln two
  */
 export function deviance(outcome: Uint8Array, eta: Float64Array, weights?: Float64Array): number {
   requireSameLength('eta', eta.length, outcome.length);
   requireOutcome(outcome);
   requireFinite('eta', eta);
-  if (weights) requireSameLength('weights', weights.length, outcome.length);
+  if (weights) {
+    requireSameLength('weights', weights.length, outcome.length);
+    requireWeights('weights', weights);
+  }
   let sum = 0;
   for (let i = 0; i < eta.length; i++) {
     const weight = weights ? weights[i] : 1;

@@ -10,8 +10,11 @@ type Point = { readonly intercept: number; readonly coefficients: Float64Array; 
 /**
  * eta = intercept + sum_j coefficient_j x_j + offset.
  * @param columns p arrays of n values
+ * @param intercept b0
  * @param coefficients p values on the scale of x
+ * @param offset n values added to eta
  * @returns n values of ln(good:bad)
+ * @throws NumericError for different lengths, NaN in an argument, and an eta that is not finite (names its row): a column has NaN there
  * @example linearPredictor([Float64Array.of(1, 2)], 0.5, Float64Array.of(2)) // [2.5, 4.5]
  */
 export function linearPredictor(
@@ -26,13 +29,18 @@ export function linearPredictor(
   const rows = columns[0]?.length ?? offset?.length ?? 0;
   columns.forEach((column, j) => requireSameLength(`column ${j}`, column.length, rows));
   const eta = new Float64Array(rows);
+  if (offset) requireSameLength('offset', offset.length, rows);
   addColumns(columns, intercept, coefficients, offset, eta);
+  requireFinite('eta', eta);
   return eta;
 }
 
 function at(problem: FitProblem, point: Point) {
   requireProblem(problem);
   requireLambda(point.lambda);
+  requireSameLength('coefficients', point.coefficients.length, problem.columns.length);
+  requireFinite('coefficients', point.coefficients);
+  requireFinite('intercept', [point.intercept]);
   const design = new Design(problem.columns, problem.outcome.length, problem.weights);
   const eta = new Float64Array(design.rows);
   addColumns(problem.columns, point.intercept, point.coefficients, problem.offset, eta);
@@ -41,7 +49,15 @@ function at(problem: FitProblem, point: Point) {
   return { design, residual, loss, penalty: scaledPenalty(problem.penalty, design) };
 }
 
-/** Mean loss plus penalty at a point, from the definition. */
+/**
+ * Mean loss plus penalty at a point, from the definition: (1/W) sum w [log(1 + e^eta) - y eta] + lambda sum m [mixing |t| + (1 - mixing)/2 t^2].
+ * @param problem as for `fitAt`
+ * @param point intercept, coefficients on the scale of x, and lambda
+ * @returns nats per row
+ * @throws NumericError for bad arguments
+ * @example objective(problem, fitAt(problem, 0.01)) // the fit's own objective
+ * Source: J. Friedman, T. Hastie and R. Tibshirani, J. Statistical Software 33(1), 2010, eq. (14).
+ */
 export function objective(problem: FitProblem, point: Point): number {
   const { design, loss, penalty } = at(problem, point);
   let total = loss;
@@ -54,7 +70,12 @@ export function objective(problem: FitProblem, point: Point): number {
 
 /**
  * Largest violation of the optimality conditions at a point, from the exact gradient, on the standardised scale (on the scale of x when not
- * standardising): 0 at the optimum. It depends on the point alone and not on how it was found.
+ * standardising): 0 at the optimum. It depends on the point alone and not on how it was found. A coordinate that is not 0 counts with
+ * |g + lambda m (mixing sign t + (1 - mixing) t)|, one at 0 with the excess of |g| over lambda m mixing, one on a limit with what points inward.
+ * @param problem as for `fitAt`
+ * @param point intercept, coefficients on the scale of x, and lambda
+ * @throws NumericError for bad arguments
+ * @example optimalityResidual(problem, fitAt(problem, 0.01)) // at most 1e-9
  * Source: J. Friedman, T. Hastie and R. Tibshirani, J. Statistical Software 33(1), 2010; the conditions are those of Karush, Kuhn and Tucker.
  */
 export function optimalityResidual(problem: FitProblem, point: Point): number {

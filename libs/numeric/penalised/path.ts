@@ -98,8 +98,12 @@ export function approach(solver: Solver, from: number, lambda: number, options: 
 /**
  * Largest lambda: at it no penalised column is in the model, just below it one is (mixing of at least 0.001).
  * max over m_j > 0 of |g_j| / m_j / max(mixing, 0.001), g_j the gradient at the fit of intercept and unpenalised columns; with a limit at 0 only
- * the inward gradient counts.
+ * the inward gradient counts. Where unpenalised columns separate goods from bads there is no such fit; the value is then that of the point the
+ * solver came to, and every fit of such a path says "separation".
+ * @param problem as for `fitAt`
+ * @returns 0 when no penalised column has variance
  * @throws NumericError for bad arguments
+ * @example largestLambda({ columns, outcome, penalty: { mixing: 1, standardize: true } })
  * Source: J. Friedman, T. Hastie and R. Tibshirani, J. Statistical Software 33(1), 2010, section 2.5.
  */
 export function largestLambda(problem: FitProblem): number {
@@ -111,9 +115,15 @@ export function largestLambda(problem: FitProblem): number {
  * Fits at every lambda of a grid, each started from the one before.
  *
  * An automatic grid is logarithmic from the largest lambda to smallestRatio times it and stops early, when asked to, once the explained share of
- * deviance gains less than 1e-5 over the previous value from the fifth value on, or exceeds 0.999. A stated grid never stops and keeps its order.
- * @throws NumericError for bad arguments; what data do to a fit (separation, an iteration limit) is its status
+ * deviance gains less than 1e-5 over the previous value from the fifth value on, or exceeds 0.999; `stoppedBecause` says which. A stated grid never
+ * stops and keeps its order.
+ * @param problem p columns of n values, outcome, weights, offset and penalty
+ * @param grid stated lambdas, or count and smallest ratio of an automatic grid
+ * @param options `tolerance` of the residual (default 1e-9), and callbacks
+ * @returns one fit per lambda with coefficients on the scale of x, null deviance and largest lambda
+ * @throws NumericError for bad arguments, with the place; what data do to a fit (separation, an iteration limit) is its status
  * @example fitPath({ columns, outcome, penalty: { mixing: 1, standardize: true } }, { count: 100, smallestRatio: 1e-4, earlyStop: true }).fits
+ * Source: J. Friedman, T. Hastie and R. Tibshirani, J. Statistical Software 33(1), 2010, sections 2.5 and 3.
  */
 export function fitPath(
   problem: FitProblem,
@@ -146,7 +156,15 @@ export function fitPath(
   return stoppedBecause ? { ...told, stoppedBecause } : told;
 }
 
-/** Logarithmic grid of `count` values from `largest` to `smallestRatio` times it. */
+/**
+ * Logarithmic grid of `count` values from `largest` to `smallestRatio` times it, falling.
+ * @param largest above 0
+ * @param count whole number of at least 1
+ * @param smallestRatio strictly between 0 and 1; 1e-4 is usual, 1e-2 with fewer rows than columns
+ * @throws NumericError for arguments outside
+ * @example automaticGrid(1, 3, 0.01) // [1, 0.1, 0.01]
+ * Source: as `fitPath`.
+ */
 export function automaticGrid(largest: number, count: number, smallestRatio: number): number[] {
   requireThat(Number.isInteger(count) && count >= 1, 'count', 'count must be a whole number of at least 1.');
   requireThat(smallestRatio > 0 && smallestRatio < 1, 'smallestRatio', 'the smallest ratio lies strictly between 0 and 1.');
@@ -159,7 +177,13 @@ export function automaticGrid(largest: number, count: number, smallestRatio: num
 
 /**
  * Fit at one lambda: from `start`, or cold by a short path from the largest lambda.
+ * @param problem p columns of n values, outcome (1 good, 0 bad), weights, offset and penalty
+ * @param lambda at least 0; 0 is the unpenalised fit
+ * @param options `tolerance` of the residual (default 1e-9), `start`, `mostIterations`
+ * @returns coefficients on the scale of x, objective, deviance, optimality residual, iterations and status
+ * @throws NumericError for bad arguments, with the place; what data do to a fit (separation, an iteration limit) is its status
  * @example fitAt({ columns, outcome, penalty: { mixing: 1, standardize: true } }, 0.01).coefficients
+ * Source: as `fitPath`; the quadratic model, the strong rule and the conditions are named where they are used.
  */
 export function fitAt(problem: FitProblem, lambda: number, options: FitOptions & { readonly start?: Fit } = {}): Fit {
   requireProblem(problem);

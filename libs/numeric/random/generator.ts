@@ -1,3 +1,5 @@
+import { requireThat } from '../checks';
+
 /**
  * A seeded generator of our own, so that a seed gives the same numbers on every machine and with every version of every package:
  * xoshiro128** of D. Blackman and S. Vigna (2018), its state filled by a 32-bit mixing function from seed and stream. Streams of one seed are
@@ -9,8 +11,17 @@ export class Generator {
   private c: number;
   private d: number;
 
-  /** @param seed and stream whole numbers; their lower 32 bits and the 21 bits above count */
+  /**
+   * @param seed and stream whole numbers of at least 0; their lower 32 bits and, of the seed, the 21 bits above count
+   * @throws NumericError for what is no such number
+   */
   constructor(seed: number, stream = 0) {
+    requireThat(Number.isSafeInteger(seed) && seed >= 0, 'seed', `a seed is a whole number of at least 0, not ${seed}.`);
+    requireThat(
+      Number.isSafeInteger(stream) && stream >= 0,
+      'stream',
+      `a stream is a whole number of at least 0, not ${stream}.`,
+    );
     let state = mix((seed >>> 0) ^ mix(Math.floor(seed / 2 ** 32) >>> 0) ^ mix((stream + 0x9e3779b9) >>> 0));
     const next = (): number => {
       state = (state + 0x9e3779b9) >>> 0;
@@ -42,8 +53,13 @@ export class Generator {
     return ((this.uint32() >>> 5) * 67108864 + (this.uint32() >>> 6)) / 9007199254740992;
   }
 
-  /** Uniform whole number from 0 to count - 1, without bias (rejection). */
+  /**
+   * Uniform whole number from 0 to count - 1, without bias (rejection).
+   * @param count 1 to 2^32
+   * @throws NumericError for a count outside
+   */
   below(count: number): number {
+    if (!(count >= 1 && count <= 4294967296)) requireThat(false, 'count', `there is no whole number below ${count}.`);
     const limit = 4294967296 - (4294967296 % count);
     let bits = this.uint32();
     while (bits >= limit) bits = this.uint32();
@@ -62,9 +78,14 @@ export class Generator {
 
   /**
    * Binomial(trials, p), exact: inversion where the mean is small, else the transformed rejection method BTRS.
+   * @param trials a whole number of at least 0
+   * @param p 0 to 1
+   * @throws NumericError for arguments outside, and for NaN
    * Source: W. Hörmann, The generation of binomial random variates, J. Statistical Computation and Simulation 46, 1993.
    */
   binomial(trials: number, p: number): number {
+    requireThat(Number.isInteger(trials) && trials >= 0, 'trials', `the number of trials is ${trials}.`);
+    requireThat(p >= -1e-12 && p <= 1 + 1e-12, 'p', `p is ${p}; it lies between 0 and 1.`);
     if (trials === 0 || p <= 0) return 0;
     if (p >= 1) return trials;
     if (p > 0.5) return trials - this.binomial(trials, 1 - p);

@@ -1,11 +1,14 @@
-import { requireOutcome, requireThat } from '../checks';
+import { requireFinite, requireOutcome, requireThat } from '../checks';
 import { Generator } from '../random/generator';
 
 /**
  * How often each row is drawn in resample `b` of a stratified bootstrap: goods from goods and bads from bads, as many as there are.
  * The same seed and number give the same resample wherever it is drawn.
  * @param outcome n values, 1 good, 0 bad
- * @returns n counts
+ * @param seed whole number of at least 0
+ * @param b number of the resample, from 0
+ * @returns n counts; those of goods add up to the number of goods, those of bads to that of bads
+ * @throws NumericError for arguments outside
  * @example stratifiedBootstrap(Uint8Array.of(1, 1, 0, 0), 7, 0) // for instance [2, 0, 1, 1]
  * Source: B. Efron and R. Tibshirani, An Introduction to the Bootstrap, 1993, chapters 6 and 8.
  */
@@ -34,12 +37,26 @@ export function drawStratified(strata: readonly Uint32Array[], seed: number, b: 
   return counts;
 }
 
-/** Counts of `total` draws over cells with the given shares: binomials in turn. Shares need not add up to 1. */
+/**
+ * Counts of `total` draws over cells with the given shares: binomials in turn.
+ * @param total whole number of draws, at least 0
+ * @param shares of at least 0, one at least above 0 when there is something to draw; they need not add up to 1
+ * @returns one count for each share; they add up to `total`
+ * @throws NumericError for arguments outside, and for NaN (names its cell)
+ * @example multinomial(new Generator(1), 100, [1, 1, 2]) // for instance [27, 22, 51]
+ */
 export function multinomial(random: Generator, total: number, shares: ArrayLike<number>): Float64Array {
   const cells = shares.length;
+  requireFinite('shares', shares);
   // Summed from the end, so that the last cell with a share has exactly 0 after it and takes what is left.
   const after = new Float64Array(cells + 1);
   for (let i = cells - 1; i >= 0; i--) after[i] = after[i + 1] + shares[i];
+  requireThat(
+    Array.from(shares).every((share) => share >= 0),
+    'shares',
+    'a share is negative.',
+  );
+  requireThat(total === 0 || after[0] > 0, 'shares', 'every share is 0.');
   const counts = new Float64Array(cells);
   let remaining = total;
   for (let i = 0; i < cells && remaining > 0; i++) {

@@ -1,6 +1,7 @@
 import { requireThat } from '../checks';
 import { NumericError } from '../errors';
 import { quantilesType7 } from '../metrics/ordering';
+import { requireLevel } from '../metrics/wilson';
 import { withDuplicatesHeld } from '../penalised/duplicates';
 import { approach, startAtLargest } from '../penalised/path';
 import type { Fit, FitProblem } from '../penalised/problem';
@@ -31,7 +32,11 @@ export interface ResampleOptions {
 
 /**
  * Refits at one lambda on stratified bootstrap resamples, columns held fixed, each with its own standardisation. Draw b depends on seed and b alone.
- * @throws NumericError for bad arguments
+ * @param problem as for `fitAt`
+ * @param lambda at least 0
+ * @param options seed, number of resamples and the number of the first
+ * @returns one draw per resample, in order; `converged` false where its fit is separated or reached its iteration limit
+ * @throws NumericError as `fitAt`, and for a count or a seed outside
  * @example stabilityOfCoefficients(resampleFits(problem, 0.01, { seed: 1, count: 200 }), fit)
  */
 export function resampleFits(problem: FitProblem, lambda: number, options: ResampleOptions): Draw[] {
@@ -96,12 +101,18 @@ function stabilityOf(values: Float64Array, reference: number, level: number): St
   };
 }
 
-function requireDraws(draws: readonly Draw[]): void {
+function requireDraws(draws: readonly Draw[], level: number): void {
+  requireLevel(level);
   if (draws.length < 2) throw new NumericError('no-rows', 'At least two resamples are needed.', { name: 'draws' });
 }
 
 /**
  * Stability of intercept and coefficients: share selected, share with the same sign, percentile interval (type 7) at `level`.
+ * @param draws at least two
+ * @param fit the fit on all rows, whose signs are compared with; coefficients on the scale of x
+ * @param level of confidence, strictly between 0 and 1
+ * @throws NumericError for fewer than two draws, a level outside
+ * @example stabilityOfCoefficients(draws, fit).coefficients[0].shareSelected
  * Source: N. Meinshausen and P. Bühlmann, Stability selection, J. Royal Statistical Society B 72, 2010 (shares); Efron and Tibshirani, 1993, chapter 13.
  */
 export function stabilityOfCoefficients(
@@ -109,7 +120,7 @@ export function stabilityOfCoefficients(
   fit: { intercept: number; coefficients: ArrayLike<number> },
   level = 0.95,
 ): { intercept: Stability; coefficients: Stability[] } {
-  requireDraws(draws);
+  requireDraws(draws, level);
   const column = (value: (draw: Draw) => number): Float64Array => Float64Array.from(draws, value);
   return {
     intercept: stabilityOf(
@@ -129,7 +140,14 @@ export function stabilityOfCoefficients(
 
 /**
  * Stability of the points of each bin, base form (Factor b_j WOE_ij), WOE held fixed: [characteristic][bin]. A bin with WOE 0 has points 0 always.
+ * @param draws at least two
+ * @param fit the fit on all rows, whose signs are compared with
  * @param woe weights of evidence of each characteristic's bins, in the order of coefficients
+ * @param pointsToDouble PDO, above 0
+ * @param level of confidence, strictly between 0 and 1
+ * @throws NumericError as `stabilityOfCoefficients`
+ * @example stabilityOfPoints(draws, fit, [[0.4, -0.3]], 20)[0][1].median // in points
+ * Source: as `stabilityOfCoefficients`.
  */
 export function stabilityOfPoints(
   draws: readonly Draw[],
@@ -138,7 +156,7 @@ export function stabilityOfPoints(
   pointsToDouble: number,
   level = 0.95,
 ): Stability[][] {
-  requireDraws(draws);
+  requireDraws(draws, level);
   const factor = scaleFactor(pointsToDouble);
   return woe.map((bins, j) =>
     Array.from(bins, (value) =>
@@ -151,7 +169,14 @@ export function stabilityOfPoints(
   );
 }
 
-/** Fits resamples and summarises: `resampleFits`, then `stabilityOfCoefficients` and, where WOE and PDO are given, `stabilityOfPoints`. */
+/**
+ * Fits resamples and summarises: `resampleFits`, then `stabilityOfCoefficients` and, where WOE and PDO are given, `stabilityOfPoints`.
+ * @param problem and fit the problem and its fit on all rows, whose lambda is used
+ * @returns draws, whether all converged, stability of intercept, coefficients and (or null) points
+ * @throws NumericError as `resampleFits`
+ * @example stabilityOfFit(problem, fit, { seed: 1, count: 200 }).coefficients[0].lower
+ * Source: as `stabilityOfCoefficients`.
+ */
 export function stabilityOfFit(
   problem: FitProblem,
   fit: Fit,

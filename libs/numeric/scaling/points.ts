@@ -32,14 +32,25 @@ export interface Points {
   readonly neutral: number[];
 }
 
-/** Nearest integer, halves away from zero. @example roundAwayFromZero(-2.5) // -3 */
+/** Nearest integer, halves away from zero, never -0. @example roundAwayFromZero(-2.5) // -3 */
 export function roundAwayFromZero(value: number): number {
   const rounded = Math.sign(value) * Math.round(Math.abs(value));
   return rounded === 0 ? 0 : rounded;
 }
 
-/** Factor = PDO / ln 2 and Offset = base score - Factor ln(base odds). @example scaleFactor(20) // 28.8539 */
+/**
+ * Factor = PDO / ln 2: points per unit of ln(good:bad).
+ * @param pointsToDouble points that double the odds, above 0
+ * @throws NumericError for a PDO that is not positive and finite
+ * @example scaleFactor(20) // 28.8539
+ * Source: as `scaleToPoints`.
+ */
 export function scaleFactor(pointsToDouble: number): number {
+  requireThat(
+    pointsToDouble > 0 && pointsToDouble < Infinity,
+    'pointsToDouble',
+    `points to double the odds are ${pointsToDouble}; they must be above 0.`,
+  );
   return pointsToDouble / Math.LN2;
 }
 
@@ -49,6 +60,7 @@ export function scaleFactor(pointsToDouble: number): number {
  * Base form: base points Offset + Factor b0, bin points Factor b_j WOE_ij. Spread form: (Offset + Factor b0)/k is added to the bins of each of
  * the k characteristics kept. Rounding takes each value to the nearest integer, halves away from zero; scores are then sums.
  *
+ * @param scaling PDO, base score (points), base odds (good:bad), form and rounding
  * @param fit intercept and the terms kept, on the scale of ln(good:bad); leave out characteristics that are not kept
  * @throws NumericError for a PDO or base odds that are not positive, or NaN
  * @example scaleToPoints({ pointsToDouble: 20, baseScore: 600, baseOdds: 50, intercept: 'base', rounding: 'nearest' },
