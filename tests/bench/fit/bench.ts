@@ -109,7 +109,8 @@ function measurePath(of: BenchCase, sample: BenchSample): BenchResult {
     json: { case: of.name, rows: of.rows, columns: of.columns, ours: own, glmnet, ratio },
     lines: [
       `${of.name}: ${of.rows} x ${of.columns}, mixing ${of.mixing}, ${ours[0].fits.length} penalties, ${threads} threads; medians of ${of.rounds}`,
-      row('ours', own.path, own.cv, own.peakMemoryMB) + `; passes ${ours[0].passes.path} and ${ours[0].passes.cv}`,
+      row('ours', own.path, own.cv, own.peakMemoryMB) +
+        `; passes ${ours[0].passes.path} and ${ours[0].passes.cv}; processor time ${seconds(median(ours.map(({ path }) => path.cpu)))} and ${seconds(median(ours.map(({ cv }) => cv.cpu)))}`,
       ...(glmnet && ratio && cpu
         ? [
             row('glmnet', glmnet.path, glmnet.cv, glmnet.peakMemoryMB) + marked,
