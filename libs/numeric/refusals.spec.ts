@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
-import * as numeric from './index';
 import { giniOfBins } from './bench/index';
+import * as engine from './engine/index';
+import * as numeric from './index';
 
 const nan = Float64Array.of(1, NaN, 3, 4);
 const scores = Float64Array.of(1, 2, 3, 4);
@@ -120,6 +121,13 @@ const calls: [string, () => unknown, object][] = [
   ['count', () => new numeric.Generator(1).below(0), { name: 'count' }],
   ['p', () => new numeric.Generator(1).binomial(5, NaN), { name: 'p' }],
   ['seed', () => numeric.stratifiedBootstrap(outcome, NaN, 0), { name: 'seed' }],
+  ['fast', () => numeric.fastFit({ ...problem, columns: [nan] }, 1), { name: 'columns', column: 0, index: 1 }],
+  ['fast', () => numeric.fastPath({ ...problem, columns: [nan] }, { lambdas: [1] }), { name: 'columns', column: 0, index: 1 }],
+  [
+    'fast',
+    () => numeric.fastCrossValidation({ ...problem, columns: [nan] }, Uint8Array.of(1, 1, 2, 2), [1]),
+    { name: 'columns', column: 0, index: 1 },
+  ],
 ];
 
 describe('what is no number is refused with its place, never passed on', () => {
@@ -154,10 +162,11 @@ describe('what is no number is refused with its place, never passed on', () => {
       'shortestBetween',
     ];
     const byOthers = ['largestLambda', 'scoresByOutcome', 'stabilityParts', 'binomialTail', 'correlation', 'standardErrors'];
+    const checked = ['strataOf', 'drawStratified'];
     const elsewhere = ['classNumeric', 'classCategories', 'scaleToPoints'];
-    const known = new Set([...passedOn, ...ofResults, ...byOthers, ...elsewhere]);
+    const known = new Set([...passedOn, ...ofResults, ...byOthers, ...checked, ...elsewhere]);
     const functions = Object.entries(numeric as Record<string, unknown>).filter(
-      ([name, value]) => typeof value === 'function' && !/^require|Error$/.test(name),
+      ([name, value]) => typeof value === 'function' && !/^require|Error$/.test(name) && !(name in engine),
     );
     expect(functions.map(([name]) => name).filter((name) => !text.includes(`${name}(`) && !known.has(name))).toEqual([]);
   });

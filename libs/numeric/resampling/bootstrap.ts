@@ -19,7 +19,12 @@ export function stratifiedBootstrap(outcome: Uint8Array, seed: number, b: number
   return drawStratified(strataOf(outcome), seed, b);
 }
 
-/** Rows of the goods, then of the bads: what every resample of a study draws from. */
+/**
+ * Rows of the goods, then of the bads: what every resample of a study draws from.
+ * @param outcome n values, 1 good, 0 bad, checked before
+ * @returns two lists of row numbers, ascending
+ * @example strataOf(Uint8Array.of(1, 0, 1)) // [[0, 2], [1]]
+ */
 export function strataOf(outcome: Uint8Array): readonly Uint32Array[] {
   return [1, 0].map((stratum) => {
     const rows = new Uint32Array(outcome.length);
@@ -29,7 +34,11 @@ export function strataOf(outcome: Uint8Array): readonly Uint32Array[] {
   });
 }
 
-/** `stratifiedBootstrap` for strata that are known and arguments that were checked. */
+/**
+ * `stratifiedBootstrap` for strata that are known and arguments that were checked.
+ * @param strata as `strataOf` gives them
+ * @example drawStratified(strataOf(Uint8Array.of(1, 1, 0)), 7, 0) // for instance [2, 0, 1]
+ */
 export function drawStratified(strata: readonly Uint32Array[], seed: number, b: number): Uint16Array {
   const random = new Generator(seed, b);
   const counts = new Uint16Array(strata.reduce((sum, rows) => sum + rows.length, 0));
