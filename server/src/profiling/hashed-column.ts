@@ -79,5 +79,14 @@ export function profileHashes(
   });
 }
 
-/** The first eight characters of base64url stand for 48 bits. */
-const firstBits = (hash: string): number => Buffer.from(hash.slice(0, 8), 'base64url').readUIntBE(0, 6);
+const digits = new Uint8Array(128);
+'ABCDEFGHIJKLMNOPQRSTUVWXYZabcdefghijklmnopqrstuvwxyz0123456789-_'.split('').forEach((digit, value) => {
+  digits[digit.charCodeAt(0)] = value;
+});
+
+/** The first eight characters of base64url (RFC 4648, section 5) stand for 48 bits. */
+function firstBits(hash: string): number {
+  let bits = 0;
+  for (let at = 0; at < 8; at++) bits = bits * 64 + digits[hash.charCodeAt(at)];
+  return bits;
+}

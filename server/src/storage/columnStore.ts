@@ -1,4 +1,5 @@
 import type { Sequelize, Transaction } from 'sequelize';
+import { readBytes } from '../database/read-bytes';
 import { rows } from '../database/sql';
 import type { ColumnSource, TextColumn } from '../replay/source';
 import { joinSegments } from './joinSegments';
@@ -52,14 +53,11 @@ export async function storeContents(
 }
 
 /** One column as it is stored: its segments in order. */
-export async function readContents(sequelize: Sequelize, readingId: string, position: number): Promise<Buffer[]> {
-  const found = await rows<{ content: Buffer }>(
-    sequelize,
-    'SELECT content FROM column_segments WHERE reading_id = $1 AND position = $2 ORDER BY segment',
-    [readingId, position],
-  );
-  return found.map(({ content }) => content);
-}
+export const readContents = (sequelize: Sequelize, readingId: string, position: number): Promise<Uint8Array<ArrayBuffer>[]> =>
+  readBytes(sequelize, {
+    text: 'SELECT content FROM column_segments WHERE reading_id = $1 AND position = $2 ORDER BY segment',
+    values: [readingId, position],
+  });
 
 /** One whole column in memory, with one dictionary over all its segments. */
 export async function readStoredColumn(

@@ -194,6 +194,9 @@ export interface UnpackedSegment {
   readonly texts: readonly string[];
 }
 
+/** Used again from segment to segment: what is unpacked does not hold on to it. */
+let unpacking = new Uint32Array(0);
+
 /** @param bytes inflated, of form 2 */
 export function unpack(bytes: Buffer): UnpackedSegment {
   const reader = new Reader(bytes);
@@ -220,7 +223,8 @@ export function unpack(bytes: Buffer): UnpackedSegment {
     }
   }
   const bits = reader.byte();
-  const codes = new Uint32Array(rows);
+  if (unpacking.length < rows) unpacking = new Uint32Array(rows);
+  const codes = unpacking.fill(0, 0, rows);
   const at = reader.at;
   const planes = bits === rowNumbers ? 0 : bits >= 8 ? bits / 8 : 0;
   if (bits === rowNumbers) for (let row = 0; row < rows; row++) codes[row] = row;

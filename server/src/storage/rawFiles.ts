@@ -2,6 +2,7 @@ import { createCipheriv, createDecipheriv, randomBytes } from 'node:crypto';
 import { promisify } from 'node:util';
 import { deflateRaw, inflateRaw } from 'node:zlib';
 import type { Sequelize, Transaction } from 'sequelize';
+import { readBytes } from '../database/read-bytes';
 import { rows } from '../database/sql';
 
 /** A raw file is kept in pieces of at most this many bytes: what is sent again when a connection breaks. */
@@ -29,11 +30,13 @@ export async function sealChunk(key: Buffer, fileId: string, sequence: number, b
 }
 
 /** @throws when the chunk was altered, belongs elsewhere or was sealed with another key */
-export async function openChunk(key: Buffer, fileId: string, sequence: number, content: Buffer): Promise<Buffer> {
+export async function openChunk(key: Buffer, fileId: string, sequence: number, content: Uint8Array): Promise<Buffer> {
   const decipher = createDecipheriv('aes-256-gcm', key, content.subarray(0, nonceBytes), { authTagLength: tagBytes });
   decipher.setAAD(place(fileId, sequence));
   decipher.setAuthTag(content.subarray(nonceBytes, nonceBytes + tagBytes));
-  const opened = Buffer.concat([decipher.update(content.subarray(nonceBytes + tagBytes)), decipher.final()]);
+  const opened = decipher.update(content.subarray(nonceBytes + tagBytes));
+  // GCM leaves nothing for the end; this checks the tag.
+  decipher.final();
   // In one piece: many small ones would have to be copied together.
   return expand(opened, { chunkSize: chunkBytes });
 }
@@ -61,12 +64,11 @@ export async function* readChunks(
   signal?: AbortSignal,
 ): AsyncGenerator<Buffer> {
   const fetch = async (sequence: number): Promise<Buffer | null> => {
-    const [found] = await rows<{ content: Buffer }>(
-      sequelize,
-      'SELECT content FROM raw_chunks WHERE file_id = $1 AND sequence = $2',
-      [fileId, sequence],
-    );
-    return found ? openChunk(key, fileId, sequence, found.content) : null;
+    const [found] = await readBytes(sequelize, {
+      text: 'SELECT content FROM raw_chunks WHERE file_id = $1 AND sequence = $2',
+      values: [fileId, sequence],
+    });
+    return found ? openChunk(key, fileId, sequence, found) : null;
   };
   const coming: Promise<Buffer | null>[] = [];
   const ask = (sequence: number): void => {

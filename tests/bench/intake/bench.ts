@@ -4,7 +4,7 @@
  *
  *   npm run bench:intake -- --rows 1000000 --columns 100          in words
  *   npm run bench:intake -- --rows 1000000 --columns 100 --json   one JSON object on standard output
- *   ... --alone   without the other two; --keep   leaves the data folder and says where it is
+ *   ... --alone   without the other two; --keep   leaves the data folder and says where it is; --profile DIR   CPU profiles of the worker
  *
  * Everything runs on a PostgreSQL of its own, with the settings that `npm start` gives it.
  */
@@ -24,6 +24,7 @@ const rows = option('--rows', 1_000_000);
 const count = option('--columns', 100);
 const json = args.includes('--json');
 const alone = args.includes('--alone');
+const profileFolder = args.includes('--profile') ? args[args.indexOf('--profile') + 1] : null;
 const say = (line: string): void => console.error(line);
 
 await ensureBuilt('server', { say });
@@ -40,7 +41,7 @@ try {
   const data = join(folder, 'data');
   const addresses = await startPostgres({ data, port: 0, say });
   try {
-    const ours = await timeOurs({ addresses, data, path, bytes, sha256, rows, columns: count, say });
+    const ours = await timeOurs({ addresses, data, path, bytes, sha256, rows, columns: count, profileFolder, say });
     say(`read and stored in ${ours.seconds.toFixed(2)} s (profile from ${ours.secondsBeforeProfile.toFixed(2)} s on)`);
     const copySeconds = alone ? null : await timeCopy(addresses.superuserUrl, path, columns);
     if (copySeconds !== null) say(`COPY ${copySeconds.toFixed(2)} s`);

@@ -38,6 +38,8 @@ interface Given {
   readonly sha256: string;
   readonly rows: number;
   readonly columns: number;
+  /** Where the worker leaves a CPU profile of each of its threads, or null. */
+  readonly profileFolder: string | null;
   readonly say: (line: string) => void;
 }
 
@@ -45,7 +47,17 @@ const piece = 8 * 1024 * 1024;
 const root = fileURLToPath(new URL('../../..', import.meta.url));
 
 /** The built product in two processes, a web server and a worker: one file through both. */
-export async function timeOurs({ addresses, data, path, bytes, sha256, rows, columns, say }: Given): Promise<OurTimes> {
+export async function timeOurs({
+  addresses,
+  data,
+  path,
+  bytes,
+  sha256,
+  rows,
+  columns,
+  profileFolder,
+  say,
+}: Given): Promise<OurTimes> {
   const environment = {
     DATABASE_URL: addresses.appUrl,
     TALLYSTONE_DATA: data,
@@ -64,8 +76,12 @@ export async function timeOurs({ addresses, data, path, bytes, sha256, rows, col
   await context.close();
   await stopThreads();
 
-  const web = await start('web', environment);
-  const worker = await start('worker', environment);
+  const web = await start('web', environment, []);
+  const worker = await start(
+    'worker',
+    environment,
+    profileFolder === null ? [] : ['--cpu-prof', `--cpu-prof-dir=${profileFolder}`],
+  );
   const database = new Client({ connectionString: addresses.ownerUrl });
   await database.connect();
   try {
@@ -143,12 +159,18 @@ async function upload(url: string, path: string, visitor: Visitor): Promise<void
   closeSync(file);
 }
 
-function start(service: 'web' | 'worker', environment: Record<string, string>): Promise<{ process: ChildProcess; url: string }> {
+function start(
+  service: 'web' | 'worker',
+  environment: Record<string, string>,
+  flags: readonly string[],
+): Promise<{ process: ChildProcess; url: string }> {
   return new Promise((resolve, reject) => {
-    const child = spawn(process.execPath, [join(root, 'dist/server/main.js'), `--services=${service}`], {
+    const child = spawn(process.execPath, [...flags, join(root, 'dist/server/main.js'), `--services=${service}`], {
       cwd: root,
       env: { ...process.env, ...environment, NODE_ENV: 'production' },
       stdio: ['ignore', 'inherit', 'inherit', 'ipc'],
+      // A session of its own, as a service has and PostgreSQL too: Linux shares a busy machine out by sessions.
+      detached: true,
     });
     child.once('message', (said: { type: string; url?: string; message?: string }) =>
       said.type === 'ready'

@@ -106,14 +106,14 @@ async function* split(
       rest = Buffer.alloc(0);
       open = true;
     }
-    for (const block of toUtf8.pieces(bytes)) rest = yield* use(Buffer.concat([rest, block]));
+    for (const block of toUtf8.pieces(bytes)) rest = yield* use(rest.length === 0 ? block : Buffer.concat([rest, block]));
     options.onProgress?.({ bytes: facts.bytes, rows: facts.rows + rows });
   }
   options.signal?.throwIfAborted();
   if (!open) {
     const bytes = opened(rest, reading);
     rest = Buffer.alloc(0);
-    for (const block of toUtf8.pieces(bytes)) rest = yield* use(Buffer.concat([rest, block]));
+    for (const block of toUtf8.pieces(bytes)) rest = yield* use(rest.length === 0 ? block : Buffer.concat([rest, block]));
   }
   toUtf8.end();
   if (rest.length > 0) {

@@ -27,7 +27,7 @@ export async function profileReading(
       await runInThread(
         'sample.profile',
         { name: header[position], position, contents, choices, personal: personal[position] ?? null, outcome },
-        { signal: run.signal },
+        { signal: run.signal, transfer: contents.map(({ buffer }) => buffer) },
       ),
     );
     progress(profiles.size / header.length);
