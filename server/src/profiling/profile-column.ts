@@ -60,7 +60,7 @@ export interface ColumnFacts {
   readonly position: number;
   readonly personal: Personal | null;
   readonly rows: number;
-  /** In the order in which they stand in the column's dictionary. */
+  /** In any order. */
   readonly missingTokens: readonly { readonly value: string; readonly count: number }[];
   readonly kind: ColumnProfile['kind'];
   readonly kindFlags: readonly ColumnFlag[];
@@ -100,7 +100,8 @@ export function describeColumn(facts: ColumnFacts): ColumnProfile {
     rows,
     distinct,
     missing,
-    missingTokens: [...missingTokens].sort((a, b) => b.count - a.count),
+    // Of one count by their text: the order must not depend on how a segment happens to be stored.
+    missingTokens: [...missingTokens].sort((a, b) => b.count - a.count || (a.value < b.value ? -1 : 1)),
     specialSuspects,
     mostFrequent: personal ? [] : mostFrequent.map(({ text, count }) => ({ value: text, count })),
     valuesComplete: !personal && distinct <= mostListed,

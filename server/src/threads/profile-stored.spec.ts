@@ -94,7 +94,8 @@ describe('the profile of a stored column', () => {
         }
         expect(profileStored({ name, position: 0, contents, choices, personal: null, outcome }, control)).toEqual(expected);
       }),
-      { numRuns: 1000 },
+      // Two missing tokens of one count, of which one is a number.
+      { numRuns: 1000, examples: [[['', '0', '0', '0', '0', '-999'], 3, false, 'c']] },
     ); // prettier-ignore
     expect(quick).toBeGreaterThan(300);
   });
