@@ -1,4 +1,5 @@
 import { defineEndpoint } from '../endpoint';
+import { Correlations, CorrelationRun } from './correlations';
 import {
   Binning,
   BinningList,
@@ -93,4 +94,19 @@ export const listEdits = defineEndpoint({
   summary: 'Every manual edit of a characteristic, undone ones included, latest first',
   params: ofCharacteristic,
   response: EditHistory,
+});
+export const readCorrelations = defineEndpoint({
+  method: 'GET',
+  path: `${binning}/correlations`,
+  summary: 'Correlations of the included characteristics by WOE, variance inflation and groups that say the same',
+  params: ofBinning,
+  response: Correlations,
+});
+export const calculateCorrelations = defineEndpoint({
+  method: 'POST',
+  path: `${binning}/correlations`,
+  summary: 'Calculate the correlations anew for the bins as they are (Idempotency-Key); the run that does it',
+  params: ofBinning,
+  response: CorrelationRun,
+  status: 202,
 });

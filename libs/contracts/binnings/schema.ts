@@ -64,6 +64,8 @@ export const warningCodes = [
   'not-monotone',
   'reversed-in-hold-out',
   'reversed-out-of-time',
+  'unstable-in-hold-out',
+  'unstable-out-of-time',
   'high-information-value',
   'one-bin',
 ] as const;
@@ -91,6 +93,9 @@ const summary = {
   /** Why it is left out; empty while included. */
   leftOutReason: z.string(),
   informationValue: finite,
+  /** 95 % interval of the information value by stratified bootstrap of the counts, bins held; null where there is no good or no bad. */
+  informationValueLower: finite.nullable(),
+  informationValueUpper: finite.nullable(),
   reading: z.enum(ivReadings),
   gini: finite,
   /** Of development rows. */
@@ -99,6 +104,10 @@ const summary = {
   bins: z.int(),
   /** Of WOE along the value axis; "none" for a categorical characteristic or one bin. */
   trend: z.enum(trends),
+  /** CSI against development, over the bins; out-of-time null while covered. */
+  stability: z.object({ holdOut: finite.nullable(), outOfTime: finite.nullable() }),
+  /** Number of the group of characteristics that say the same, from 1; null alone, or before correlations are calculated. */
+  group: z.int().nullable(),
   warnings: z.array(Warning),
   edits: z.int(),
   editsWithoutReason: z.int(),
@@ -172,3 +181,6 @@ export const ofCharacteristic = z.strictObject({ binningId: z.uuid(), characteri
 
 /** Result of the run "class characteristics" (Run.result). */
 export const ClassingResult = z.object({ binningId: z.uuid(), characteristics: z.int() });
+
+/** Result of the run "correlate characteristics" (Run.result). */
+export const CorrelationResult = z.object({ binningId: z.uuid(), characteristics: z.int() });

@@ -1,6 +1,7 @@
 import { weightOfEvidence } from '../binning/weight-of-evidence';
 import { usualSmoothing } from './reading';
 import { rangeLabel } from './labels';
+import { rounderNear } from './round';
 import { binOfSlots, layoutOf, sumSlots } from './slots';
 import type { FineClasses, NumericBins, Place } from './types';
 
@@ -52,6 +53,18 @@ export function edgeNear(fine: FineClasses, bins: NumericBins, cut: number, valu
     if (best === null || Math.abs(edge - value) < Math.abs(best - value)) best = edge;
   }
   return best;
+}
+
+/**
+ * The round number that a cut can take without passing more than half of the fine class on either side; null where it is as round as can be.
+ * @example rounderCut(fine, bins, 0) // 30 for a cut at 29.6 between fine edges 28 and 31
+ */
+export function rounderCut(fine: FineClasses, bins: NumericBins, cut: number): number | null {
+  const from = bins.edges[cut];
+  if (from === undefined) return null;
+  const below = fine.edges.findLast((edge) => edge < from) ?? fine.range?.[0] ?? from;
+  const above = fine.edges.find((edge) => edge > from) ?? fine.range?.[1] ?? from;
+  return rounderNear(from, (from + below) / 2, (from + above) / 2);
 }
 
 export function addCut(fine: FineClasses, bins: NumericBins, edge: number): EditOf<NumericBins> | null {

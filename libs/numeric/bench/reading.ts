@@ -2,6 +2,7 @@ import { wilsonInterval } from '../metrics/wilson';
 import { weightOfEvidence, type Smoothing } from '../binning/weight-of-evidence';
 import { binLabels } from './labels';
 import { binOfSlots, coarseCount, layoutOf, sumSlots, type BinSums } from './slots';
+import { benchStability, type BenchStability } from './stability';
 import { giniOfBins, observedTrend, type ObservedTrend } from './trend';
 import { partitions, type BinKind, type Bins, type FineClasses, type PartitionName } from './types';
 
@@ -58,6 +59,8 @@ export interface BenchReading {
   readonly gini: number;
   readonly missingShare: number;
   readonly trend: ObservedTrend;
+  /** CSI of hold-out and out-of-time against development. */
+  readonly stability: BenchStability;
 }
 
 /**
@@ -106,6 +109,7 @@ export function readBench(fine: FineClasses, bins: Bins, smoothing: Smoothing = 
             woe,
             development.figures.slice(0, coarse).map((bin) => bin.rows),
           ),
+    stability: benchStability(fine, bins),
   };
 }
 

@@ -1,4 +1,5 @@
 import type { BenchReading, BinFigures } from './reading';
+import { isUnstable, largeChange, stabilityWords } from './stability';
 import type { PartitionName } from './types';
 
 export interface SizeLimits {
@@ -13,6 +14,8 @@ export type WarningCode =
   | 'not-monotone'
   | 'reversed-in-hold-out'
   | 'reversed-out-of-time'
+  | 'unstable-in-hold-out'
+  | 'unstable-out-of-time'
   | 'high-information-value'
   | 'one-bin';
 
@@ -77,6 +80,20 @@ export function benchWarnings(reading: BenchReading, limits: SizeLimits): BenchW
       code,
       message: `The order of risk is reversed ${words}, beyond chance, up to and including ${names}.`,
       bins,
+    });
+  }
+  for (const [partition, code] of [
+    ['holdOut', 'unstable-in-hold-out'],
+    ['outOfTime', 'unstable-out-of-time'],
+  ] as const) {
+    const index = reading.stability[partition];
+    const rows = reading.totals[partition]?.rows ?? 0;
+    if (index === null || !isUnstable(index, reading.totals.development?.rows ?? 0, rows, reading.bins.length)) continue;
+    const size = index > largeChange ? 'a large' : 'a moderate';
+    warnings.push({
+      code,
+      message: `CSI of ${stabilityWords[partition]} against development is ${index.toFixed(2)}, ${size} change (common practice: from 0.10, from 0.25).`,
+      bins: [],
     });
   }
   if (reading.informationValue > leakageSuspect) {

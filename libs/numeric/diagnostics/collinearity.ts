@@ -56,9 +56,17 @@ const COLLINEAR = 1e-10;
  * Source: D. A. Belsley, E. Kuh and R. E. Welsch, Regression Diagnostics, Wiley 1980.
  */
 export function varianceInflation(columns: readonly Float64Array[], weights?: Float64Array): Float64Array {
-  const full = correlation(columns, weights);
-  const varying = columns.flatMap((_, j) => (Number.isNaN(full[j][j]) ? [] : [j]));
-  const result = new Float64Array(columns.length).fill(NaN);
+  return inflationOf(correlation(columns, weights));
+}
+
+/**
+ * The same from a correlation matrix.
+ * @param full p rows of p correlations; NaN on the diagonal for a column without variance
+ * @example inflationOf([[1, 0.6], [0.6, 1]]) // [1.5625, 1.5625]
+ */
+export function inflationOf(full: readonly (readonly number[])[]): Float64Array {
+  const varying = full.flatMap((_, j) => (Number.isNaN(full[j][j]) ? [] : [j]));
+  const result = new Float64Array(full.length).fill(NaN);
   if (varying.length === 0) return result;
   const matrix = new Matrix(varying.map((j) => varying.map((k) => full[j][k])));
   const eigen = new EigenvalueDecomposition(matrix, { assumeSymmetric: true });

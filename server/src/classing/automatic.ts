@@ -1,6 +1,6 @@
 import type { AskedConstraints, Bins, Constraints, Fine, SlotCounts } from '@tallystone/contracts/binnings/bins';
 import type { Warning } from '@tallystone/contracts/binnings/schema';
-import { benchWarnings, classCount, readBench, readingOfIv } from '@tallystone/numeric/bench';
+import { type BenchReading, benchWarnings, classCount, readBench, readingInterval, readingOfIv } from '@tallystone/numeric/bench';
 import { classCategories } from '@tallystone/numeric/binning/categories';
 import { classNumeric } from '@tallystone/numeric/binning/classing';
 
@@ -47,15 +47,19 @@ export function classFine(fine: Fine, asked: AskedConstraints): ClassedBins {
 export interface Summarised {
   readonly summary: {
     informationValue: number;
+    informationValueLower: number | null;
+    informationValueUpper: number | null;
     reading: ReturnType<typeof readingOfIv>;
     gini: number;
     missingShare: number;
     bins: number;
     trend: ReturnType<typeof readBench>['trend'];
+    csiHoldOut: number | null;
     warnings: Warning[];
   };
   /** Those that out-of-time figures give: kept apart until they are opened. */
   readonly outOfTimeWarnings: Warning[];
+  readonly outOfTimeCsi: number | null;
 }
 
 /** What the list shows about a characteristic: the browser's own calculation, made on the server. */
@@ -65,15 +69,27 @@ export function summarise(fine: Fine, outOfTime: SlotCounts, bins: Bins, constra
   return {
     summary: {
       informationValue: reading.informationValue,
+      ...spreadOf(reading),
       reading: readingOfIv(reading.informationValue),
       gini: reading.gini,
       missingShare: reading.missingShare,
       bins: reading.bins.length,
       trend: reading.trend,
-      warnings: warnings.filter(({ code }) => code !== 'reversed-out-of-time'),
+      csiHoldOut: reading.stability.holdOut,
+      warnings: warnings.filter(({ code }) => !ofOutOfTime.has(code)),
     },
-    outOfTimeWarnings: warnings.filter(({ code }) => code === 'reversed-out-of-time'),
+    outOfTimeWarnings: warnings.filter(({ code }) => ofOutOfTime.has(code)),
+    outOfTimeCsi: reading.stability.outOfTime,
   };
+}
+
+/** Warnings that give out-of-time figures away. */
+const ofOutOfTime: ReadonlySet<Warning['code']> = new Set(['reversed-out-of-time', 'unstable-out-of-time']);
+
+/** As the bench shows it, from the same seed: what the list says and what the bench says are one number. */
+function spreadOf(reading: BenchReading): { informationValueLower: number | null; informationValueUpper: number | null } {
+  const interval = readingInterval(reading);
+  return { informationValueLower: interval?.lower ?? null, informationValueUpper: interval?.upper ?? null };
 }
 
 function sum(values: readonly number[]): number {

@@ -28,11 +28,15 @@ export class Binning extends Model<InferAttributes<Binning>, InferCreationAttrib
 /** What the bins of a characteristic say, kept so that the list does not recalculate them. Without out-of-time figures. */
 export interface StoredSummary {
   informationValue: number;
+  informationValueLower: number | null;
+  informationValueUpper: number | null;
   reading: (typeof ivReadings)[number];
   gini: number;
   missingShare: number;
   bins: number;
   trend: (typeof trends)[number];
+  /** CSI of hold-out against development. */
+  csiHoldOut: number | null;
   warnings: Warning[];
 }
 
@@ -53,6 +57,8 @@ export class BinningCharacteristic extends Model<
   declare outOfTime: SlotCounts;
   declare summary: StoredSummary;
   declare outOfTimeWarnings: CreationOptional<Warning[]>;
+  /** CSI of out-of-time against development: apart, as it is covered until somebody opens it. */
+  declare outOfTimeCsi: CreationOptional<number | null>;
   declare included: CreationOptional<boolean>;
   declare leftOutReason: CreationOptional<string>;
   declare revision: CreationOptional<number>;
@@ -106,6 +112,7 @@ export function defineBinning(sequelize: Sequelize): void {
       outOfTime: DataTypes.JSONB,
       summary: DataTypes.JSONB,
       outOfTimeWarnings: DataTypes.JSONB,
+      outOfTimeCsi: DataTypes.DOUBLE,
       included: DataTypes.BOOLEAN,
       leftOutReason: DataTypes.TEXT,
       revision: DataTypes.INTEGER,

@@ -1,4 +1,5 @@
 import { classColumn, reclassFine, splitColumn } from '../classing/class-column';
+import { correlateCodes, inflate } from '../classing/correlate';
 import { buildScorecard } from './build-scorecard';
 import { codeSegment } from './code-segment';
 import { compareFits } from './compare-fits';
@@ -15,6 +16,8 @@ import { resampleVersion } from './study-stability';
  */
 export const tasks = {
   'binning.class': classColumn,
+  'binning.correlate': correlateCodes,
+  'binning.inflate': inflate,
   'binning.reclass': reclassFine,
   'binning.split': splitColumn,
   'fit.compare': compareFits,

@@ -13,6 +13,8 @@ export const binningRows: readonly AccessRow[] = [
   developsModel(`PUT ${binning}/characteristics/:characteristicId`),
   developsModel(`POST ${binning}/characteristics/:characteristicId/fine-edges`),
   readsModel(`GET ${binning}/characteristics/:characteristicId/edits`),
+  readsModel(`GET ${binning}/correlations`),
+  developsModel(`POST ${binning}/correlations`),
   readsModel('GET /api/sample-definitions/:definitionId/out-of-time'),
   developsModel('POST /api/sample-definitions/:definitionId/out-of-time'),
 ];

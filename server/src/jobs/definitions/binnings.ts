@@ -1,4 +1,4 @@
-import { ClassingResult } from '@tallystone/contracts/binnings/schema';
+import { ClassingResult, CorrelationResult } from '@tallystone/contracts/binnings/schema';
 import { z } from 'zod';
 import { defineJob } from './job';
 
@@ -8,4 +8,12 @@ export const classBinningJob = defineJob({
   queue: 'long',
   payload: z.strictObject({ binningId: z.uuid() }),
   result: ClassingResult,
+});
+
+/** Correlates the characteristics of a binning by the WOE of their development rows. */
+export const correlateBinningJob = defineJob({
+  kind: 'binning.correlate',
+  queue: 'long',
+  payload: z.strictObject({ binningId: z.uuid() }),
+  result: CorrelationResult,
 });

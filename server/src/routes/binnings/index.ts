@@ -1,9 +1,11 @@
 import {
+  calculateCorrelations,
   listBinnings,
   listCharacteristics,
   listEdits,
   readBinning,
   readCharacteristic,
+  readCorrelations,
   reclassCharacteristics as reclassEndpoint,
   saveCharacteristic,
   setInclusion as setInclusionEndpoint,
@@ -13,6 +15,8 @@ import {
 import { canEditBinning, canListBinnings, canReadBinning, canStartBinning } from '../../policies/binnings';
 import { reclassCharacteristics, setInclusion } from '../../services/binnings/change-several';
 import { allEdits, presentEdit } from '../../services/binnings/edits';
+import { startCorrelation } from '../../services/binnings/correlate-binning';
+import { presentCorrelations } from '../../services/binnings/correlations';
 import { findBinning, findBinnings } from '../../services/binnings/find-binning';
 import { findOnBench } from '../../services/binnings/find-characteristic';
 import { presentBinning, presentBinningSummary, presentCharacteristics, presentDetail } from '../../services/binnings/present';
@@ -116,6 +120,21 @@ export const binningRoutes: readonly Route[] = [
     authorise: ({ person, subject }) => canReadBinning(person, subject.binning),
     act: async ({ context, subject }) => ({
       edits: (await allEdits(context.sequelize, subject.characteristic.id)).map(presentEdit),
+    }),
+  }),
+  defineRoute(readCorrelations, {
+    access: 'signed-in',
+    find: ({ context, params }) => findBinning(context.sequelize, params.binningId),
+    authorise: ({ person, subject }) => canReadBinning(person, subject),
+    act: ({ context, person, subject }) => presentCorrelations(context.sequelize, person, subject),
+  }),
+  defineRoute(calculateCorrelations, {
+    access: 'signed-in',
+    idempotent: true,
+    find: ({ context, params, tx }) => findBinning(context.sequelize, params.binningId, tx),
+    authorise: ({ person, subject }) => canEditBinning(person, subject),
+    act: async ({ context, tx, person, subject, requestId }) => ({
+      runId: await startCorrelation(context, tx, { binningId: subject.id, person, modelId: subject.modelId, requestId }),
     }),
   }),
 ];

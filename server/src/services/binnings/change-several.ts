@@ -71,7 +71,7 @@ export async function reclassCharacteristics(
     characteristics: found.map(({ fine, outOfTime }, index) => ({ fine, outOfTime, constraints: asking[index] })),
   });
   for (const [index, one] of found.entries()) {
-    const { automatic, constraints, summary, outOfTimeWarnings } = classed[index];
+    const { automatic, constraints, summary, outOfTimeWarnings, outOfTimeCsi } = classed[index];
     await BinningCharacteristic.update(
       {
         automatic,
@@ -79,6 +79,7 @@ export async function reclassCharacteristics(
         definition: withBins(one.definition, automatic, automaticClassing(constraints)),
         summary,
         outOfTimeWarnings,
+        outOfTimeCsi,
         revision: one.revision + 1,
         changedAt: new Date(),
         changedBy: person.id,

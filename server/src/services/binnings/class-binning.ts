@@ -42,7 +42,7 @@ export async function storeClassing(
   const binningId = binning.id;
   await BinningCharacteristic.bulkCreate(
     classed.map(
-      ({ column, kind, position, definition: entry, automatic, constraints, fine, outOfTime, summary, outOfTimeWarnings }) => {
+      ({ column, kind, position, definition: entry, automatic, constraints, fine, outOfTime, summary, outOfTimeWarnings, outOfTimeCsi }) => {
         const oneBin = summary.warnings.find(({ code }) => code === 'one-bin');
         return {
           binningId,
@@ -56,6 +56,7 @@ export async function storeClassing(
           outOfTime,
           summary,
           outOfTimeWarnings,
+          outOfTimeCsi,
           included: oneBin === undefined,
           leftOutReason: oneBin?.message ?? '',
           changedBy: run.personId,

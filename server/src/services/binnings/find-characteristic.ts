@@ -16,6 +16,7 @@ export interface ListedCharacteristic {
   readonly leftOutReason: string;
   readonly summary: StoredSummary;
   readonly outOfTimeWarnings: Warning[];
+  readonly outOfTimeCsi: number | null;
   readonly edits: number;
   readonly editsWithoutReason: number;
   readonly revision: number;
@@ -35,7 +36,7 @@ export interface FoundCharacteristic extends ListedCharacteristic {
 
 const listed = `
   c.id, c.column_name AS "column", c.kind, c.position, c.included, c.left_out_reason AS "leftOutReason", c.summary,
-  c.out_of_time_warnings AS "outOfTimeWarnings", c.revision,
+  c.out_of_time_warnings AS "outOfTimeWarnings", c.out_of_time_csi AS "outOfTimeCsi", c.revision,
   (SELECT count(*)::int FROM binning_edits e WHERE e.characteristic_id = c.id AND e.place IS NOT NULL) AS edits,
   (SELECT count(*)::int FROM binning_edits e WHERE e.characteristic_id = c.id AND e.place IS NOT NULL AND e.reason IS NULL) AS "editsWithoutReason"`;
 const whole = `${listed}, c.binning_id AS "binningId", c.definition, c.automatic, c.constraints, c.fine, c.out_of_time AS "outOfTime",

@@ -11,6 +11,7 @@ import { binsOfEntry } from '../../classing/definition';
 import type { Actor } from '../../models/person';
 import { abilitiesOnBinning, canEditBinning } from '../../policies/binnings';
 import { outOfTimeState } from '../out-of-time/cover';
+import { groupsOf } from './correlations';
 import { editsInEffect, presentEdit } from './edits';
 import type { FoundBinning } from './find-binning';
 import { type ListedCharacteristic, type OnBench, listCharacteristics } from './find-characteristic';
@@ -42,11 +43,28 @@ export async function presentBinning(
   };
 }
 
-function presentSummary(one: ListedCharacteristic, outOfTime: OutOfTimeState): CharacteristicSummary {
-  const { summary, outOfTimeWarnings, id, column, kind, position, included, leftOutReason, edits, editsWithoutReason, revision } =
-    one;
-  const warnings = outOfTime === 'opened' ? [...summary.warnings, ...outOfTimeWarnings] : summary.warnings;
-  return { id, column, kind, position, included, leftOutReason, ...summary, warnings, edits, editsWithoutReason, revision };
+function presentSummary(one: ListedCharacteristic, outOfTime: OutOfTimeState, group: number | null): CharacteristicSummary {
+  const { summary, outOfTimeWarnings, outOfTimeCsi, ...rest } = one;
+  const { csiHoldOut, informationValueLower, informationValueUpper, ...figures } = summary;
+  const opened = outOfTime === 'opened';
+  return {
+    id: rest.id,
+    column: rest.column,
+    kind: rest.kind,
+    position: rest.position,
+    included: rest.included,
+    leftOutReason: rest.leftOutReason,
+    ...figures,
+    // Kept since the first edit after they were introduced: null for bins that are older.
+    informationValueLower: informationValueLower ?? null,
+    informationValueUpper: informationValueUpper ?? null,
+    stability: { holdOut: csiHoldOut ?? null, outOfTime: opened ? outOfTimeCsi : null },
+    group,
+    warnings: opened ? [...summary.warnings, ...outOfTimeWarnings] : summary.warnings,
+    edits: rest.edits,
+    editsWithoutReason: rest.editsWithoutReason,
+    revision: rest.revision,
+  };
 }
 
 export async function presentCharacteristics(
@@ -55,7 +73,10 @@ export async function presentCharacteristics(
   tx: Transaction | null = null,
 ): Promise<CharacteristicList> {
   const outOfTime = await outOfTimeState(sequelize, binning.definitionId, tx);
-  const characteristics = (await listCharacteristics(sequelize, binning.id, tx)).map((one) => presentSummary(one, outOfTime));
+  const groups = await groupsOf(sequelize, binning.id, tx);
+  const characteristics = (await listCharacteristics(sequelize, binning.id, tx)).map((one) =>
+    presentSummary(one, outOfTime, groups.get(one.id) ?? null),
+  );
   return { characteristics, finding: findingOf(characteristics) };
 }
 
@@ -85,7 +106,7 @@ export async function presentDetail(
   const outOfTime = await outOfTimeState(sequelize, binning.definitionId, tx);
   const { definition, automatic, constraints, fine, changedBy, changedAt } = characteristic;
   return {
-    ...presentSummary(characteristic, outOfTime),
+    ...presentSummary(characteristic, outOfTime, (await groupsOf(sequelize, binning.id, tx)).get(characteristic.id) ?? null),
     definition,
     current: binsOfEntry(definition),
     automatic,

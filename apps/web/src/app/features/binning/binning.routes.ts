@@ -18,6 +18,11 @@ export const binningRoutes: Routes = [
     loadComponent: () => import('./pages/characteristics-page').then((m) => m.CharacteristicsPage),
   },
   {
+    path: ':binningId/correlations',
+    title: 'Correlations',
+    loadComponent: () => import('./pages/correlations-page').then((m) => m.CorrelationsPage),
+  },
+  {
     path: ':binningId/:characteristicId',
     title: 'Bins',
     canDeactivate: [savesFirst],

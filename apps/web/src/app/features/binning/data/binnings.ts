@@ -1,6 +1,7 @@
 import { HttpClient, type HttpResourceRef, httpResource } from '@angular/common/http';
 import { Injectable, inject } from '@angular/core';
 import type { AskedConstraints } from '@tallystone/contracts/binnings/bins';
+import type { Correlations } from '@tallystone/contracts/binnings/correlations';
 import type { EditHistory } from '@tallystone/contracts/binnings/schema';
 import type {
   Binning,
@@ -28,6 +29,7 @@ export type {
   CharacteristicList,
   CharacteristicSummary,
   AskedConstraints,
+  Correlations,
   EditHistory,
 };
 
@@ -41,6 +43,10 @@ export function binningOf(binningId: () => string): HttpResourceRef<Binning | un
 
 export function characteristicsOf(binningId: () => string): HttpResourceRef<CharacteristicList | undefined> {
   return httpResource<CharacteristicList>(() => `/api/binnings/${binningId()}/characteristics`);
+}
+
+export function correlationsOf(binningId: () => string): HttpResourceRef<Correlations | undefined> {
+  return httpResource<Correlations>(() => `/api/binnings/${binningId()}/correlations`);
 }
 
 /** A confirmed definition that a binning can start from. */
@@ -97,6 +103,12 @@ export class Binnings {
 
   setInclusion(binningId: string, asked: SetInclusion): Promise<CharacteristicList> {
     return firstValueFrom(this.http.post<CharacteristicList>(`/api/binnings/${binningId}/inclusions`, asked));
+  }
+
+  calculateCorrelations(binningId: string, key: string): Promise<{ runId: string }> {
+    return firstValueFrom(
+      this.http.post<{ runId: string }>(`/api/binnings/${binningId}/correlations`, {}, { headers: idempotent(key) }),
+    );
   }
 
   openOutOfTime(definitionId: string, reason: string): Promise<OutOfTimeCover> {

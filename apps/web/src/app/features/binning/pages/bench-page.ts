@@ -22,6 +22,8 @@ import {
   mergeGroups,
   mergeNumeric,
   readBench,
+  readingInterval,
+  rounderCut,
   splitGroup,
   splitNumeric,
   binLabels,
@@ -29,14 +31,13 @@ import {
   type EditOf,
   type PartitionName,
 } from '@tallystone/numeric/bench';
-import { informationValueInterval } from '@tallystone/numeric/binning/information-value';
 import { firstValueFrom } from 'rxjs';
 import { CurrentModel } from '../../../core/current-model';
 import { Shortcuts } from '../../../core/shortcuts';
 import { Task } from '../../../core/task';
 import { warnBeforeUnload } from '../../../core/unsaved-changes';
 import { DecisionNotice } from '../../../ui/decision-notice';
-import { binWords, metric, moment, plural, woe } from '../../../ui/numbers';
+import { binWords, metric, moment, plural, woe, written } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { currentBins } from '../bench/history';
@@ -113,18 +114,14 @@ export class BenchPage {
     const fine = this.bench.fine();
     const history = this.bench.history();
     if (!fine || !history) return null;
-    const bins = readBench(fine, currentBins(history)).bins;
-    const goods = bins.map(({ figures }) => figures.development?.goods ?? 0);
-    const bads = bins.map(({ figures }) => figures.development?.bads ?? 0);
-    if (!goods.some((count) => count > 0) || !bads.some((count) => count > 0)) return null;
-    return informationValueInterval(goods, bads, { resamples: 100, seed: 1 }).standardError;
+    return readingInterval(readBench(fine, currentBins(history)));
   });
   protected readonly note = computed(() => {
     const fine = this.bench.fine();
     const reading = this.bench.reading();
     if (!fine || !reading) return null;
     const spread = this.spread();
-    return `${trendWords(fine, reading)}, IV ${woe(reading.informationValue)}${spread === null ? '' : ` ± ${woe(spread)}`}, Gini ${metric(reading.gini)}`;
+    return `${trendWords(fine, reading)}, IV ${woe(reading.informationValue)}${spread === null ? '' : ` (${woe(spread.lower)} to ${woe(spread.upper)})`}, Gini ${metric(reading.gini)}`;
   });
   protected readonly savedWords = computed(() => {
     const at = this.bench.savedAt();
@@ -174,6 +171,15 @@ export class BenchPage {
     const bins = this.bench.bins();
     const cut = this.cut();
     return bins?.kind === 'numeric' && cut !== null ? (bins.edges[cut] ?? null) : null;
+  });
+  /** The round number the selected cut can go to. */
+  protected readonly rounder = computed(() => {
+    const [fine, bins, cut] = [this.bench.fine(), this.bench.bins(), this.cut()];
+    return fine && bins?.kind === 'numeric' && cut !== null ? rounderCut(fine, bins, cut) : null;
+  });
+  protected readonly rounderWords = computed(() => {
+    const value = this.rounder();
+    return value === null ? 'Round already' : `Round to ${written(value)}`;
   });
   protected readonly chosenWords = computed(() => `${plural(this.chosen().size, 'category', 'categories')} chosen`);
   protected readonly neighbours = computed(() => {
@@ -277,7 +283,13 @@ export class BenchPage {
     const field = this.valueField()?.nativeElement;
     const value = field ? field.valueAsNumber : Number.NaN;
     if (!Number.isFinite(value)) return;
-    const cut = this.cut();
+    this.placeCut(this.cut(), value, () => {
+      if (field) field.value = '';
+    });
+  }
+
+  /** A cut goes to exactly this value, or a new cut comes there; the fine class is split where it has to be. */
+  protected placeCut(cut: number | null, value: number, added?: () => void): void {
     void this.placing.run(async () => {
       const done = cut === null ? await this.bench.addCutAt(value) : await this.bench.moveCutTo(cut, value);
       if (!done)
@@ -286,8 +298,13 @@ export class BenchPage {
             ? `There is a cut at ${value} already.`
             : 'A cut stays between its neighbours, and this one is there already or would pass them.',
         );
-      if (cut === null && field) field.value = '';
+      if (cut === null) added?.();
     });
+  }
+
+  protected round(): void {
+    const value = this.rounder();
+    if (value !== null) this.placeCut(this.cut(), value);
   }
 
   protected removeCut(): void {

@@ -18,7 +18,7 @@ import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { type CharacteristicList, type CharacteristicSummary, Binnings, binningOf, characteristicsOf } from '../data/binnings';
-import { asPart, filtered, partWords, riskTrend, shownParts, warningsOf } from '../ui/characteristic-filter';
+import { asPart, filtered, intervalText, partWords, riskTrend, shownParts, warningsOf } from '../ui/characteristic-filter';
 import { usualConstraints } from '../ui/constraints-form';
 import { OutOfTimeCover } from '../ui/out-of-time-cover';
 import type { ReclassAnswer, ReclassQuestion } from '../ui/reclass-dialog';
@@ -67,6 +67,7 @@ export class CharacteristicsPage {
   protected readonly partWords = partWords;
   protected readonly part = computed(() => asPart(this.show()));
   protected readonly mayEdit = computed(() => this.binning.hasValue() && this.binning.value().abilities.includes('edit'));
+  private readonly opened = computed(() => this.binning.hasValue() && this.binning.value().outOfTime === 'opened');
   protected readonly mayOpen = computed(() => this.current.can('develop'));
   protected readonly run = this.runs.run(() => (this.binning.hasValue() ? this.binning.value().runId : null));
   protected readonly all = computed(() => (this.list.hasValue() ? this.list.value().characteristics : null));
@@ -87,11 +88,43 @@ export class CharacteristicsPage {
       ? [{ key: 'choose', label: 'Choose', value: (row: CharacteristicSummary) => (this.chosen().has(row.id) ? 'yes' : 'no') }]
       : []),
     { key: 'iv', label: 'IV', kind: 'number', decimals: 3, value: (row) => row.informationValue, sortable: true },
+    {
+      key: 'interval',
+      label: 'IV from, to',
+      unit: '95 % interval',
+      kind: 'number',
+      value: (row) => row.informationValueLower,
+      format: (row) => intervalText(row.informationValueLower, row.informationValueUpper),
+      sortable: true,
+    },
     { key: 'reading', label: 'Reading', value: (row) => row.reading, sortable: true },
     { key: 'gini', label: 'Gini', kind: 'metric', value: (row) => row.gini, sortable: true },
     { key: 'missing', label: 'Missing', kind: 'share', value: (row) => row.missingShare, sortable: true },
     { key: 'bins', label: 'Bins', kind: 'count', value: (row) => row.bins, sortable: true },
     { key: 'trend', label: 'Risk', value: (row) => riskTrend[row.trend], sortable: true },
+    {
+      key: 'hold-out',
+      label: 'CSI',
+      unit: 'hold-out',
+      kind: 'number',
+      decimals: 3,
+      value: (row) => row.stability.holdOut,
+      sortable: true,
+    },
+    ...(this.opened()
+      ? [
+          {
+            key: 'out-of-time',
+            label: 'CSI',
+            unit: 'out-of-time',
+            kind: 'number' as const,
+            decimals: 3,
+            value: (row: CharacteristicSummary) => row.stability.outOfTime,
+            sortable: true,
+          },
+        ]
+      : []),
+    { key: 'group', label: 'Group', unit: 'says the same', kind: 'count', value: (row) => row.group, sortable: true },
     { key: 'edits', label: 'Edits', kind: 'count', value: (row) => row.edits, sortable: true },
     { key: 'warnings', label: 'To look at', value: (row) => warningsOf(row), sortable: true },
     {
@@ -108,7 +141,7 @@ export class CharacteristicsPage {
     this.typed.pipe(debounceTime(250), takeUntilDestroyed()).subscribe((search) => this.go({ search: search.trim() || null }));
     this.runs.finished
       .pipe(
-        filter((run) => run.kind === 'binning.class' && run.entityId === this.binningId()),
+        filter((run) => ['binning.class', 'binning.correlate'].includes(run.kind) && run.entityId === this.binningId()),
         takeUntilDestroyed(),
       )
       .subscribe(() => this.reload());

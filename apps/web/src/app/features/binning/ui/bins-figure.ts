@@ -14,6 +14,8 @@ import {
   groupCategories,
   mergeNumeric,
   moveCut,
+  rounderCut,
+  snapped,
   type BenchReading,
   type Bins,
   type EditOf,
@@ -46,6 +48,9 @@ interface DraggedCategory {
   /** Group under the pointer. */
   readonly over: number | null;
 }
+
+/** A cut that is let go this near to a round number goes there, unless Alt is held. */
+const snapReach = 10; // px
 
 interface TableRow {
   readonly bin: number;
@@ -84,6 +89,8 @@ export class BinsFigure {
   readonly edited = output<EditOf<Bins>>();
   /** A value is to be typed for the selected cut. */
   readonly typing = output<void>();
+  /** A cut is to go to exactly this value, which may lie inside a fine class. */
+  readonly placed = output<{ cut: number; value: number }>();
   readonly binKey = output<{ bin: number; event: KeyboardEvent }>();
 
   private readonly svg = viewChild<ElementRef<SVGSVGElement>>('svg');
@@ -259,6 +266,13 @@ export class BinsFigure {
         this.typing.emit();
         event.preventDefault();
         return;
+      case 'r': {
+        const value = rounderCut(fine, bins, cut);
+        if (value !== null) this.placed.emit({ cut, value });
+        event.preventDefault();
+        event.stopPropagation();
+        return;
+      }
       case 'Escape':
         this.letGo();
         return;
@@ -280,7 +294,7 @@ export class BinsFigure {
   protected drag(event: PointerEvent): void {
     const dragged = this.dragged();
     if (!dragged || dragged.pointer !== event.pointerId) return;
-    const edge = this.nearest(dragged, this.atX(event));
+    const edge = this.nearest(dragged, this.atX(event), event.altKey);
     const moved = edge === null ? null : moveCut(this.fine(), dragged.bins, dragged.cut, edge);
     this.previewed.emit(moved?.bins ?? dragged.bins);
   }
@@ -289,7 +303,7 @@ export class BinsFigure {
     const dragged = this.dragged();
     if (!dragged || dragged.pointer !== event.pointerId) return;
     this.dragged.set(null);
-    const edge = this.nearest(dragged, this.atX(event));
+    const edge = this.nearest(dragged, this.atX(event), event.altKey);
     this.previewed.emit(null);
     if (edge !== null) this.emit(moveCut(this.fine(), dragged.bins, dragged.cut, edge));
   }
@@ -377,15 +391,13 @@ export class BinsFigure {
     if (edit && edit.kind !== 'cut moved') this.chosen.set(new Set());
   }
 
-  private nearest({ cut, bins }: Dragged, x: number): number | null {
+  /** The fine edge that a cut let go at x comes to: the nearest, or a rounder one within a few pixels. */
+  private nearest({ cut, bins }: Dragged, x: number, exact: boolean): number | null {
     const [low, high] = [bins.edges[cut - 1] ?? -Infinity, bins.edges[cut + 1] ?? Infinity];
-    let best: { edge: number; away: number } | null = null;
-    for (const place of this.geometry().edges) {
-      if (place.edge <= low || place.edge >= high) continue;
-      const away = Math.abs(place.x - x);
-      if (best === null || away < best.away) best = { edge: place.edge, away };
-    }
-    return best?.edge ?? null;
+    const places = this.geometry()
+      .edges.filter(({ edge }) => edge > low && edge < high)
+      .map((place) => ({ value: place.edge, away: Math.abs(place.x - x) }));
+    return snapped(places, exact ? 0 : snapReach)?.value ?? null;
   }
 
   private groupAt(x: number): number | null {

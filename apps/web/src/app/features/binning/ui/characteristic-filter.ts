@@ -1,7 +1,8 @@
 import type { CharacteristicSummary } from '@tallystone/contracts/binnings/schema';
+import { DASH, fixed } from '../../../ui/numbers';
 
 /** What part of the list is shown; stands in the address. */
-export const shownParts = ['all', 'included', 'left-out', 'warnings', 'edited', 'unexplained'] as const;
+export const shownParts = ['all', 'included', 'left-out', 'warnings', 'unstable', 'same', 'edited', 'unexplained'] as const;
 export type ShownPart = (typeof shownParts)[number];
 
 export const partWords: Record<ShownPart, string> = {
@@ -9,6 +10,8 @@ export const partWords: Record<ShownPart, string> = {
   included: 'Included',
   'left-out': 'Left out',
   warnings: 'With a warning',
+  unstable: 'Unstable',
+  same: 'Saying the same as another',
   edited: 'Edited by hand',
   unexplained: 'Edits not explained',
 };
@@ -18,6 +21,8 @@ const holds: Record<ShownPart, (one: CharacteristicSummary) => boolean> = {
   included: (one) => one.included,
   'left-out': (one) => !one.included,
   warnings: (one) => one.warnings.length > 0,
+  unstable: (one) => one.warnings.some(({ code }) => code.startsWith('unstable')),
+  same: (one) => one.group !== null,
   edited: (one) => one.edits > 0,
   unexplained: (one) => one.editsWithoutReason > 0,
 };
@@ -34,7 +39,9 @@ const warningWords: Record<CharacteristicSummary['warnings'][number]['code'], st
   'zero-cell': 'zero cell',
   'not-monotone': 'not monotone',
   'reversed-in-hold-out': 'reversed in hold-out',
-  'reversed-out-of-time': 'reversed in out-of-time',
+  'reversed-out-of-time': 'reversed out of time',
+  'unstable-in-hold-out': 'unstable in hold-out',
+  'unstable-out-of-time': 'unstable out of time',
   'high-information-value': 'check for leakage',
   'one-bin': 'one bin',
 };
@@ -51,3 +58,7 @@ export const riskTrend: Record<CharacteristicSummary['trend'], string> = {
   mixed: 'up and down',
   none: '',
 };
+
+/** Two ends of an interval in one cell. @example intervalText(0.21, 0.4) // '0.210–0.400' */
+export const intervalText = (lower: number | null, upper: number | null): string =>
+  lower === null || upper === null ? DASH : `${fixed(lower, 3)}–${fixed(upper, 3)}`;
