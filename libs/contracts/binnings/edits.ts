@@ -53,6 +53,10 @@ export const Edit = z
     at: z.string(),
     /** False once it was undone or the characteristic was classed anew. */
     inEffect: z.boolean(),
+    /** Made on the bins of an earlier binning, and carried over when this one was classed. */
+    carriedFrom: z.object({ binning: z.string(), by: z.string(), at: z.string() }).nullable(),
+    /** Why an edit of the earlier binning makes no sense here; null for one that does. Before and after are the earlier bins. */
+    notCarried: z.string().nullable(),
   })
   .meta({ id: 'BinningEdit' });
 export type Edit = z.infer<typeof Edit>;

@@ -7,7 +7,12 @@ const column = z.string();
 
 export const binningEvents = [
   recordEvent('binning.started', 'binning', {
-    after: z.strictObject({ name: z.string(), definitionId: z.uuid(), constraints: AskedConstraints }),
+    after: z.strictObject({
+      name: z.string(),
+      definitionId: z.uuid(),
+      constraints: AskedConstraints,
+      fromBinningId: z.uuid().nullable().optional(),
+    }),
   }),
   recordEvent('binning.classed', 'binning', { after: z.strictObject({ characteristics: z.int() }) }),
   recordEvent('binning.edited', 'binning-characteristic', {
@@ -15,6 +20,16 @@ export const binningEvents = [
     after: Bins,
     detail: z.strictObject({ column, edit: z.uuid(), kind: EditKind, what: z.string() }),
     reason: z.string().optional(),
+  }),
+  recordEvent('binning.edit-carried', 'binning-characteristic', {
+    before: Bins,
+    after: Bins,
+    detail: z.strictObject({ column, edit: z.uuid(), from: z.uuid(), what: z.string() }),
+    reason: z.string().optional(),
+  }),
+  recordEvent('binning.edit-not-carried', 'binning-characteristic', {
+    detail: z.strictObject({ column, from: z.uuid(), what: z.string() }),
+    reason: z.string(),
   }),
   recordEvent('binning.edit-undone', 'binning-characteristic', {
     before: Bins,

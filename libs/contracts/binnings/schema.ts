@@ -17,6 +17,8 @@ export const NewBinning = z.strictObject({
   definitionId: z.uuid(),
   name,
   constraints: AskedConstraints.default(() => AskedConstraints.parse({})),
+  /** An earlier binning of the model: characteristics of the same name keep its constraints, its edits where they make sense, and what it left out. */
+  fromBinningId: z.uuid().nullable().default(null),
 });
 export type NewBinning = z.input<typeof NewBinning>;
 
@@ -37,6 +39,8 @@ export const BinningSummary = z.object({
   /** Manual edits in effect, and how many of them have no reason yet. */
   edits: z.int(),
   editsWithoutReason: z.int(),
+  /** The earlier binning it started from, with how many of its edits were carried over and how many were not. */
+  from: z.object({ id: z.uuid(), name: z.string(), carried: z.int(), notCarried: z.int() }).nullable(),
   createdBy: z.string(),
   createdAt: z.string(),
 });
@@ -111,6 +115,8 @@ const summary = {
   warnings: z.array(Warning),
   edits: z.int(),
   editsWithoutReason: z.int(),
+  /** Edits of the earlier binning that make no sense here. */
+  notCarried: z.int(),
   revision: z.int(),
 };
 
@@ -138,6 +144,8 @@ export const CharacteristicDetail = z
     fine: Fine,
     /** Manual edits in effect, oldest first: `automatic`, edited by these in turn, is `current`. */
     editList: z.array(Edit),
+    /** Edits of the earlier binning that make no sense here, each with the reason. */
+    notCarriedList: z.array(Edit),
     changedBy: z.string(),
     changedAt: z.string(),
     abilities: z.array(z.enum(['edit'])),

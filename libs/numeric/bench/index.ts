@@ -10,3 +10,4 @@ export * from './warnings';
 export * from './round';
 export * from './numeric-edits';
 export * from './categorical-edits';
+export * from './carry';

@@ -2,7 +2,7 @@ import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { NumericError, ZeroCellError } from '../errors';
 import { assignBins, binOf, countBins } from './assignment';
-import { fineEdges, shortestBetween } from './fine-classes';
+import { fineEdgesOfCounts, fineEdges, shortestBetween } from './fine-classes';
 import { informationValueInterval } from './information-value';
 import { weightOfEvidence } from './weight-of-evidence';
 
@@ -174,5 +174,29 @@ describe('informationValueInterval', () => {
     expect(small.lower).toBeLessThan(small.informationValue);
     expect(small.upper).toBeGreaterThan(small.informationValue);
     expect((large.upper - large.lower) / (small.upper - small.lower)).toBeCloseTo(0.1, 1);
+  });
+});
+
+describe('fineEdgesOfCounts', () => {
+  it('is fineEdges of the repeated values', () => {
+    fc.assert(
+      fc.property(
+        fc.array(fc.tuple(fc.double({ min: -50, max: 50, noNaN: true }), fc.integer({ min: 0, max: 9 })), {
+          minLength: 1,
+          maxLength: 60,
+        }),
+        fc.integer({ min: 1, max: 20 }),
+        (cells, count) => {
+          const repeated = cells.flatMap(([value, times]) => new Array<number>(times).fill(value));
+          if (repeated.length === 0) {
+            expect(() => fineEdgesOfCounts([1], [0], count)).toThrow('no known value');
+            return;
+          }
+          const values = cells.map(([value]) => value);
+          const times = cells.map(([, n]) => n);
+          expect(fineEdgesOfCounts(values, times, count)).toEqual(fineEdges(Float64Array.from(repeated), count));
+        },
+      ),
+    );
   });
 });

@@ -1,5 +1,6 @@
 import type { AskedConstraints, Bins, Constraints, Fine, SlotCounts } from '@tallystone/contracts/binnings/bins';
 import type { BinnedCharacteristic, DataReading } from '@tallystone/contracts/specification/types';
+import { type CarriedStep, type EarlierEdit, carriedEdges, carryEdits } from '@tallystone/numeric/bench';
 import { ReplayError } from '../replay/problems';
 import type { SourceColumn } from '../replay/source';
 import type { Task } from '../threads/task';
@@ -11,8 +12,11 @@ import {
   TooManyCategories,
   fineClasses,
   fineEntry,
-  splitFineClass,
+  splitFineClasses,
 } from './fine-classes';
+
+/** Fine classes leave room in a byte for special codes and missing. */
+const mostFineEdges = 199;
 
 export interface ClassColumn {
   readonly defined: DefinedCharacteristic;
@@ -21,6 +25,8 @@ export interface ClassColumn {
   /** Arrays over shared memory are not copied from thread to thread. */
   readonly counted: CountedRows;
   readonly constraints: AskedConstraints;
+  /** Edits of an earlier binning, oldest first, to be made again where they make sense. */
+  readonly earlier?: readonly EarlierEdit[];
 }
 
 export interface ClassedColumn extends Summarised {
@@ -29,6 +35,8 @@ export interface ClassedColumn extends Summarised {
   readonly constraints: Constraints;
   readonly fine: Fine;
   readonly outOfTime: SlotCounts;
+  /** What became of each earlier edit. */
+  readonly carried: readonly CarriedStep[];
 }
 
 const sourceOfOne = (defined: DefinedCharacteristic, column: SourceColumn, rows: number) => ({
@@ -43,19 +51,30 @@ export const classColumn: Task<ClassColumn, ClassedColumn | { readonly unusable:
   data,
   counted,
   constraints: asked,
+  earlier = [],
 }) => {
   try {
-    const { fine, outOfTime } = fineClasses(
-      defined,
-      sourceOfOne(defined, column, counted.rows),
-      data,
-      counted,
-      asked.fineClasses,
-    );
-    if (fine.kind === 'categorical' && fine.categories.length === 0) return { unusable: 'No development row has a value.' };
-    const { bins: automatic, constraints } = classFine(fine, asked);
-    const definition = withBins(fineEntry(defined, fine.edges, fine.categories), automatic, automaticClassing(constraints));
-    return { definition, automatic, constraints, fine, outOfTime, ...summarise(fine, outOfTime, automatic, constraints) };
+    const source = sourceOfOne(defined, column, counted.rows);
+    const counts = fineClasses(defined, source, data, counted, asked.fineClasses);
+    if (counts.fine.kind === 'categorical' && counts.fine.categories.length === 0)
+      return { unusable: 'No development row has a value.' };
+    const { bins: automatic, constraints } = classFine(counts.fine, asked);
+    // Cuts of earlier edits lie where they lay: the fine classes are split there, after the automatic bins have been found without them.
+    const more = carriedEdges(counts.fine, earlier).slice(0, Math.max(0, mostFineEdges - counts.fine.edges.length));
+    const { fine, outOfTime } = more.length > 0 ? splitFineClasses(defined, source, data, counted, counts.fine, more) : counts;
+    const { bins, steps } = carryEdits(fine, automatic, earlier);
+    const current = bins as Bins;
+    const classing = steps.some(({ kept }) => kept) ? ({ made: 'by hand' } as const) : automaticClassing(constraints);
+    const definition = withBins(fineEntry(defined, fine.edges, fine.categories), current, classing);
+    return {
+      definition,
+      automatic,
+      constraints,
+      fine,
+      outOfTime,
+      carried: steps,
+      ...summarise(fine, outOfTime, current, constraints),
+    };
   } catch (error) {
     if (error instanceof TooManyCategories || error instanceof ReplayError) return { unusable: error.message };
     throw error;
@@ -75,7 +94,7 @@ export const splitColumn: Task<SplitColumn, { readonly fine: Fine; readonly outO
   counted,
   fine,
   edge,
-}) => splitFineClass(defined, sourceOfOne(defined, column, counted.rows), data, counted, fine, edge);
+}) => splitFineClasses(defined, sourceOfOne(defined, column, counted.rows), data, counted, fine, [edge]);
 
 export interface ReclassFine {
   readonly characteristics: readonly {

@@ -1,11 +1,12 @@
 import type { Fine, SlotCounts } from '@tallystone/contracts/binnings/bins';
 import type { BinnedCharacteristic, DataReading, NumericCharacteristic } from '@tallystone/contracts/specification/types';
-import { fineEdges } from '@tallystone/numeric/binning/fine-classes';
+import { fineEdgesOfCounts } from '@tallystone/numeric/binning/fine-classes';
 import { slotCount } from '@tallystone/numeric/bench';
 import { codeCharacteristics } from '../replay/coding';
 import { Columns } from '../replay/columns';
-import type { ColumnSource } from '../replay/source';
-import { BAD, DEVELOPMENT, GOOD, HOLD_OUT, NO_BIN, OUT_OF_TIME, type Prepared } from '../replay/types';
+import { ReplayError } from '../replay/problems';
+import { type ColumnSource, type TextColumn, textsOf } from '../replay/source';
+import { DEVELOPMENT, HOLD_OUT, NO_BIN, OUT, OUT_OF_TIME, type Prepared } from '../replay/types';
 
 /** Who is in the sample and as what: as much of `Prepared` as counting needs. */
 export type CountedRows = Pick<Prepared, 'rows' | 'partition' | 'outcome' | 'weights'>;
@@ -51,23 +52,23 @@ export function fineClasses(
     const categories = categoriesOf(defined, source, data, counted);
     return countSlots(defined, source, data, counted, { edges: [], categories, range: null });
   }
-  const values = knownValues(defined, source, data, counted);
-  const edges = values.length > 0 ? fineEdges(values, fineClassCount) : [];
+  const { values, rows } = knownValues(defined, source, data, counted);
+  const edges = values.length > 0 ? fineEdgesOfCounts(values, rows, fineClassCount) : [];
   let range: [number, number] | null = null;
   for (const value of values) range = range ? [Math.min(range[0], value), Math.max(range[1], value)] : [value, value];
   return countSlots(defined, source, data, counted, { edges, categories: [], range });
 }
 
-/** The same fine classes with one more edge, counted anew from the column. */
-export function splitFineClass(
+/** The same fine classes with more edges, counted anew from the column. */
+export function splitFineClasses(
   defined: DefinedCharacteristic,
   source: ColumnSource,
   data: DataReading,
   counted: CountedRows,
   fine: Fine,
-  edge: number,
+  more: readonly number[],
 ): FineClassing {
-  const edges = [...new Set([...fine.edges, edge])].sort((a, b) => a - b);
+  const edges = [...new Set([...fine.edges, ...more])].sort((a, b) => a - b);
   return countSlots(defined, source, data, counted, { edges, categories: [], range: fine.range });
 }
 
@@ -101,12 +102,8 @@ function countSlots(
   counted: CountedRows,
   classes: Pick<Fine, 'edges' | 'categories' | 'range'>,
 ): FineClassing {
-  const [coded] = codeCharacteristics(
-    { data, characteristics: [fineEntry(defined, classes.edges, classes.categories)] },
-    source,
-    counted,
-  ).characteristics;
-  const codes = coded.codes ?? new Uint8Array(0);
+  const entry = fineEntry(defined, classes.edges, classes.categories);
+  const column = textColumn(defined, source, counted);
   const empty: Fine = {
     kind: defined.kind,
     ...classes,
@@ -118,35 +115,114 @@ function countSlots(
   };
   const slots = slotCount(empty);
   const count = (): SlotCounts => ({ rows: zeros(slots), goods: zeros(slots), bads: zeros(slots) });
-  const parts: (SlotCounts | null)[] = [null, count(), count(), count()];
-  for (let row = 0; row < counted.rows; row++) {
-    const part = parts[counted.partition[row]];
-    const outcome = counted.outcome[row];
-    if (!part || (outcome !== GOOD && outcome !== BAD)) continue;
-    // A category that no class has: development has not seen it. The last slot is theirs.
-    const slot = codes[row] === NO_BIN ? slots - 1 : codes[row];
-    part.rows[slot] += 1;
-    part[outcome === GOOD ? 'goods' : 'bads'][slot] += counted.weights ? counted.weights[row] : 1;
+  const [development, holdOut, outOfTime] = [count(), count(), count()];
+  if (column) {
+    const codes = codesOfTexts(defined, entry, column, data, counted, source);
+    const tally = tallyTexts(column, counted);
+    for (const [part, counts] of [
+      [DEVELOPMENT, development],
+      [HOLD_OUT, holdOut],
+      [OUT_OF_TIME, outOfTime],
+    ] as const) {
+      for (let text = 0; text < column.texts.length; text++) {
+        // A category that no class has: development has not seen it. The last slot is theirs.
+        const slot = codes[text] === NO_BIN ? slots - 1 : codes[text];
+        const at = text * groups + 2 * (part - 1);
+        counts.rows[slot] += tally.rows[at] + tally.rows[at + 1];
+        counts.goods[slot] += tally.weights[at + 1];
+        counts.bads[slot] += tally.weights[at];
+      }
+    }
   }
-  return { fine: { ...empty, development: parts[DEVELOPMENT]!, holdOut: parts[HOLD_OUT]! }, outOfTime: parts[OUT_OF_TIME]! };
+  return { fine: { ...empty, development, holdOut }, outOfTime };
 }
 
+/** Partition by outcome: what rows of one text are told apart by. */
+const groups = 6;
+
+interface Tally {
+  /** By text, then by partition (development, hold-out, out-of-time), bads before goods. */
+  readonly rows: Uint32Array | Float64Array;
+  readonly weights: Uint32Array | Float64Array;
+}
+
+/**
+ * Rows and weights of each different text by partition and outcome: the one pass over the rows. All that follows works on the texts, of which
+ * there are few.
+ */
+function tallyTexts(column: TextColumn, { partition, outcome, weights }: CountedRows): Tally {
+  const { codes } = column;
+  const rows = new Uint32Array(column.texts.length * groups);
+  const sums = weights ? new Float64Array(rows.length) : rows;
+  for (let row = 0; row < codes.length; row++) {
+    // Partitions count from 1, 0 is out; outcome 0 is bad, 1 good, anything else is not counted.
+    if (partition[row] === OUT || outcome[row] > 1) continue;
+    const at = codes[row] * groups + 2 * (partition[row] - 1) + outcome[row];
+    rows[at]++;
+    if (weights) sums[at] += weights[row];
+  }
+  return { rows, weights: sums };
+}
+
+/**
+ * The code that the chain gives each text, from the chain itself: rows of equal text have equal codes, so a sample with one row for each text
+ * says all of them. Texts of rows that are out alone are not judged.
+ */
+function codesOfTexts(
+  defined: DefinedCharacteristic,
+  entry: BinnedCharacteristic,
+  column: TextColumn,
+  data: DataReading,
+  counted: CountedRows,
+  source: ColumnSource,
+): Uint8Array {
+  const texts = column.texts.length;
+  const partition = new Uint8Array(texts).fill(OUT);
+  for (let row = 0; row < counted.rows; row++) if (counted.partition[row] !== OUT) partition[column.codes[row]] = DEVELOPMENT;
+  const each: TextColumn = { kind: 'texts', codes: Uint32Array.from({ length: texts }, (_, text) => text), texts: column.texts };
+  const ofTexts: ColumnSource = { rows: texts, column: (name) => (name === defined.column ? each : undefined) };
+  const coding = { data, characteristics: [entry] };
+  try {
+    const [coded] = codeCharacteristics(coding, ofTexts, { rows: texts, partition }).characteristics;
+    return coded.codes ?? new Uint8Array(texts);
+  } catch (error) {
+    // The same problems, told with the number of rows that have them.
+    if (error instanceof ReplayError) codeCharacteristics(coding, source, counted);
+    throw error;
+  }
+}
+
+function textColumn(defined: DefinedCharacteristic, source: ColumnSource, counted: CountedRows): TextColumn | null {
+  const column = source.column(defined.column);
+  return column ? textsOf(column, counted.rows) : null;
+}
+
+/** The different known values of development rows with a good or bad outcome, with the number of rows of each. */
 function knownValues(
   defined: DefinedCharacteristic,
   source: ColumnSource,
   data: DataReading,
   counted: CountedRows,
-): Float64Array {
-  const numbers = new Columns(source, data).numbers(defined.column);
+): { values: Float64Array; rows: Float64Array } {
+  const column = textColumn(defined, source, counted);
+  if (!column) return { values: new Float64Array(0), rows: new Float64Array(0) };
+  const each: ColumnSource = {
+    rows: column.texts.length,
+    column: () => ({ kind: 'texts', codes: Uint32Array.from(column.texts, (_, text) => text), texts: column.texts }),
+  };
+  const numbers = new Columns(each, data).numbers(defined.column);
   const special = new Set(defined.special.flatMap(({ values }) => values.map(Number)));
-  const known = new Float64Array(counted.rows);
-  let found = 0;
-  for (let row = 0; numbers && row < counted.rows; row++) {
-    if (!isDeveloped(counted, row)) continue;
-    const value = numbers.number(row);
-    if (!Number.isNaN(value) && !special.has(value)) known[found++] = value;
+  const tally = tallyTexts(column, counted);
+  const values: number[] = [];
+  const rows: number[] = [];
+  for (let text = 0; numbers && text < column.texts.length; text++) {
+    const developed = tally.rows[text * groups] + tally.rows[text * groups + 1];
+    const value = developed > 0 ? numbers.number(text) : NaN;
+    if (Number.isNaN(value) || special.has(value)) continue;
+    values.push(value);
+    rows.push(developed);
   }
-  return known.slice(0, found);
+  return { values: Float64Array.from(values), rows: Float64Array.from(rows) };
 }
 
 /** By falling number of development rows, so that what matters stands first; equal ones by their text. */
@@ -155,19 +231,13 @@ function categoriesOf(defined: DefinedCharacteristic, source: ColumnSource, data
   const column = columns.text(defined.column);
   if (!column) return [];
   const special = new Set(defined.special.flatMap(({ values }) => values.map(String)));
-  const seen = new Map<number, number>();
-  for (let row = 0; row < counted.rows; row++) {
-    if (isDeveloped(counted, row)) seen.set(column.codes[row], (seen.get(column.codes[row]) ?? 0) + 1);
-  }
-  const categories = [...seen]
-    .map(([code, rows]) => ({ text: column.texts[code], rows }))
-    .filter(({ text }) => !columns.isMissing(text) && !special.has(text))
+  const tally = tallyTexts(column, counted);
+  const categories = column.texts
+    .map((text, code) => ({ text, rows: tally.rows[code * groups] + tally.rows[code * groups + 1] }))
+    .filter(({ text, rows }) => rows > 0 && !columns.isMissing(text) && !special.has(text))
     .sort((a, b) => b.rows - a.rows || (a.text < b.text ? -1 : 1));
   if (categories.length > mostCategories) throw new TooManyCategories(categories.length);
   return categories.map(({ text }) => text);
 }
-
-const isDeveloped = (counted: CountedRows, row: number): boolean =>
-  counted.partition[row] === DEVELOPMENT && (counted.outcome[row] === GOOD || counted.outcome[row] === BAD);
 
 const zeros = (length: number): number[] => new Array<number>(length).fill(0);

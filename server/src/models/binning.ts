@@ -20,6 +20,8 @@ export class Binning extends Model<InferAttributes<Binning>, InferCreationAttrib
   declare constraints: AskedConstraints;
   declare barred: { column: string; reason: string }[];
   declare runId: CreationOptional<string | null>;
+  /** The earlier binning whose edits were carried over. */
+  declare fromBinningId: CreationOptional<string | null>;
   declare readyAt: CreationOptional<Date | null>;
   declare createdAt: CreationOptional<Date>;
   declare createdBy: string;
@@ -77,6 +79,9 @@ export class BinningEdit extends Model<InferAttributes<BinningEdit>, InferCreati
   declare before: Bins;
   declare after: Bins;
   declare reason: EditReason | null;
+  /** The edit of an earlier binning that this one repeats, or would have. */
+  declare carriedFrom: CreationOptional<string | null>;
+  declare notCarried: CreationOptional<string | null>;
   declare madeBy: string;
   declare madeAt: CreationOptional<Date>;
 }
@@ -92,6 +97,7 @@ export function defineBinning(sequelize: Sequelize): void {
       constraints: DataTypes.JSONB,
       barred: DataTypes.JSONB,
       runId: DataTypes.UUID,
+      fromBinningId: DataTypes.UUID,
       readyAt: DataTypes.DATE,
       createdAt: DataTypes.DATE,
       createdBy: DataTypes.UUID,
@@ -132,6 +138,8 @@ export function defineBinning(sequelize: Sequelize): void {
       before: DataTypes.JSONB,
       after: DataTypes.JSONB,
       reason: DataTypes.JSONB,
+      carriedFrom: DataTypes.UUID,
+      notCarried: DataTypes.TEXT,
       madeBy: DataTypes.UUID,
       madeAt: DataTypes.DATE,
     },

@@ -1,3 +1,4 @@
+import { randomUUID } from 'node:crypto';
 import type { Transaction } from 'sequelize';
 import type { RunContext } from '../../jobs/handler';
 import { Binning, BinningCharacteristic } from '../../models/binning';
@@ -5,11 +6,13 @@ import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
 import { findDefinition, loadPrepared } from '../samples/definitions';
 import { splitColumns } from './barred';
+import { type EarlierCharacteristic, readEarlier, storeCarried } from './carry-over';
 import { classCharacteristics } from './class-characteristics';
 
 type Classed = Awaited<ReturnType<typeof classCharacteristics>>;
 export interface ClassedBinning extends Classed {
   readonly binning: Binning;
+  readonly earlier: ReadonlyMap<string, EarlierCharacteristic>;
 }
 
 /** Classes every characteristic that a binning takes. Nothing is stored before the last one is classed. */
@@ -24,27 +27,52 @@ export async function classBinning(
   if (!definition) throw new Error(`Binning ${binningId} has no sample definition`);
   const counted = await loadPrepared(sequelize, definition.id);
   const { taken } = splitColumns(definition.content.columns);
+  const earlier = await readEarlier(sequelize, binning.fromBinningId);
   progress('Classing characteristics', 0);
   const classed = await classCharacteristics(
     sequelize,
-    { sampleId: definition.sampleId, data: definition.content.data, counted, columns: taken, constraints: binning.constraints },
+    {
+      sampleId: definition.sampleId,
+      data: definition.content.data,
+      counted,
+      columns: taken,
+      constraints: binning.constraints,
+      earlier,
+    },
     { signal, onDone: (done) => progress('Classing characteristics', done / taken.length) },
   );
-  return { binning, ...classed };
+  return { binning, earlier, ...classed };
 }
 
 /** Writes the bins, once, in the transaction that ends the run. */
 export async function storeClassing(
   tx: Transaction,
   run: { readonly personId: string },
-  { binning, classed, unusable }: ClassedBinning,
+  { binning, earlier, classed, unusable }: ClassedBinning,
 ): Promise<{ binningId: string; characteristics: number }> {
   const binningId = binning.id;
+  const entered = classed.map((one) => ({ ...one, id: randomUUID() }));
   await BinningCharacteristic.bulkCreate(
-    classed.map(
-      ({ column, kind, position, definition: entry, automatic, constraints, fine, outOfTime, summary, outOfTimeWarnings, outOfTimeCsi }) => {
+    entered.map(
+      ({
+        id,
+        column,
+        kind,
+        position,
+        definition: entry,
+        automatic,
+        constraints,
+        fine,
+        outOfTime,
+        summary,
+        outOfTimeWarnings,
+        outOfTimeCsi,
+      }) => {
         const oneBin = summary.warnings.find(({ code }) => code === 'one-bin');
+        const before = earlier.get(column);
+        const leftOut = oneBin?.message ?? (before?.included === false ? before.leftOutReason : null);
         return {
+          id,
           binningId,
           position,
           columnName: column,
@@ -57,8 +85,8 @@ export async function storeClassing(
           summary,
           outOfTimeWarnings,
           outOfTimeCsi,
-          included: oneBin === undefined,
-          leftOutReason: oneBin?.message ?? '',
+          included: leftOut === null,
+          leftOutReason: leftOut ?? '',
           changedBy: run.personId,
         };
       },
@@ -69,13 +97,18 @@ export async function storeClassing(
     { readyAt: new Date(), barred: [...binning.barred, ...unusable] },
     { where: { id: binningId }, transaction: tx },
   );
+  const person = await actorOf(run.personId, tx);
   await appendRecord(tx, {
-    actor: await actorOf(run.personId, tx),
+    actor: person,
     action: 'binning.classed',
     entity: 'binning',
     entityId: binningId,
     modelId: binning.modelId,
     after: { characteristics: classed.length },
   });
+  for (const { id, column, carried } of entered) {
+    const before = earlier.get(column);
+    if (before) await storeCarried(tx, person, { id, modelId: binning.modelId, column }, before, carried);
+  }
   return { binningId, characteristics: classed.length };
 }

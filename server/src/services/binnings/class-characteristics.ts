@@ -1,5 +1,6 @@
 import type { AskedConstraints } from '@tallystone/contracts/binnings/bins';
 import type { DataReading } from '@tallystone/contracts/specification/types';
+import type { EarlierEdit } from '@tallystone/numeric/bench';
 import type { Sequelize } from 'sequelize';
 import type { ClassedColumn } from '../../classing/class-column';
 import type { CountedRows } from '../../classing/fine-classes';
@@ -11,6 +12,12 @@ export interface ColumnToClass {
   readonly column: string;
   readonly kind: 'numeric' | 'categorical';
   readonly special: readonly { readonly label: string; readonly values: readonly (number | string)[] }[];
+}
+
+/** What an earlier binning decided about a characteristic. */
+export interface Earlier {
+  readonly constraints: AskedConstraints;
+  readonly edits: readonly EarlierEdit[];
 }
 
 export interface Classed {
@@ -48,6 +55,8 @@ export async function classCharacteristics(
     counted: CountedRows;
     columns: readonly ColumnToClass[];
     constraints: AskedConstraints;
+    /** By column. */
+    earlier: ReadonlyMap<string, Earlier>;
   },
   control: { signal: AbortSignal; onDone: (done: number) => void },
 ): Promise<Classed> {
@@ -65,7 +74,14 @@ export async function classCharacteristics(
       if (!column) throw new Error(`The sample has no column ${defined.column}`);
       const result = await runInThread(
         'binning.class',
-        { defined, column, data: asked.data, counted, constraints: asked.constraints },
+        {
+          defined: { column: defined.column, kind: defined.kind, special: defined.special },
+          column,
+          data: asked.data,
+          counted,
+          constraints: asked.earlier.get(defined.column)?.constraints ?? asked.constraints,
+          earlier: asked.earlier.get(defined.column)?.edits ?? [],
+        },
         { signal: control.signal },
       );
       if ('unusable' in result) unusable.push({ column: defined.column, reason: result.unusable });

@@ -9,8 +9,15 @@ export interface StoredEdit extends Omit<Edit, 'at' | 'inEffect'> {
 }
 
 const select = `
-  SELECT e.id, e.characteristic_id AS "characteristicId", e.place, e.kind, e.what, e.before, e.after, e.reason, p.name AS by, e.made_at AS at
-    FROM binning_edits e JOIN people p ON p.id = e.made_by`;
+  SELECT e.id, e.characteristic_id AS "characteristicId", e.place, e.kind, e.what, e.before, e.after, e.reason, p.name AS by, e.made_at AS at,
+         e.not_carried AS "notCarried",
+         CASE WHEN f.id IS NOT NULL THEN json_build_object(
+           'binning', b.name, 'by', o.name, 'at', to_char(f.made_at AT TIME ZONE 'UTC', 'YYYY-MM-DD"T"HH24:MI:SS.MS"Z"')) END AS "carriedFrom"
+    FROM binning_edits e JOIN people p ON p.id = e.made_by
+    LEFT JOIN binning_edits f ON f.id = e.carried_from
+    LEFT JOIN people o ON o.id = f.made_by
+    LEFT JOIN binning_characteristics c ON c.id = f.characteristic_id
+    LEFT JOIN binnings b ON b.id = c.binning_id`;
 
 export const presentEdit = ({ characteristicId: _characteristicId, place, at, ...edit }: StoredEdit): Edit => ({
   ...edit,
@@ -27,6 +34,20 @@ export function editsInEffect(
   return rows(
     sequelize,
     `${select} WHERE e.characteristic_id = $1 AND e.place IS NOT NULL ORDER BY e.place`,
+    [characteristicId],
+    tx,
+  );
+}
+
+/** Edits of the earlier binning that make no sense here. */
+export function editsNotCarried(
+  sequelize: Sequelize,
+  characteristicId: string,
+  tx: Transaction | null = null,
+): Promise<StoredEdit[]> {
+  return rows(
+    sequelize,
+    `${select} WHERE e.characteristic_id = $1 AND e.not_carried IS NOT NULL ORDER BY e.sequence`,
     [characteristicId],
     tx,
   );

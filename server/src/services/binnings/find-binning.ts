@@ -22,6 +22,7 @@ export interface FoundBinning extends BinningStanding {
   readonly included: number;
   readonly edits: number;
   readonly editsWithoutReason: number;
+  readonly from: { readonly id: string; readonly name: string; readonly carried: number; readonly notCarried: number } | null;
   readonly createdBy: string;
   readonly createdAt: Date;
 }
@@ -36,12 +37,19 @@ const select = `
               WHEN r.state = 'cancelled' THEN 'cancelled' ELSE 'failed' END AS state,
          CASE WHEN b.ready_at IS NULL THEN r.problem ->> 'message' END AS problem,
          c.characteristics, c.included, e.edits, e."editsWithoutReason",
+         CASE WHEN f.id IS NOT NULL THEN json_build_object('id', f.id, 'name', f.name, 'carried', k.carried, 'notCarried', k.not_carried) END AS "from",
          ARRAY(SELECT person_id::text FROM model_members WHERE model_id = b.model_id) AS "memberIds"
     FROM binnings b
     JOIN sample_definitions d ON d.id = b.definition_id
     JOIN samples s ON s.id = d.sample_id
     JOIN people p ON p.id = b.created_by
     LEFT JOIN runs r ON r.id = b.run_id
+    LEFT JOIN binnings f ON f.id = b.from_binning_id
+    LEFT JOIN LATERAL (
+      SELECT (count(*) FILTER (WHERE e.not_carried IS NULL))::int AS carried, (count(*) FILTER (WHERE e.not_carried IS NOT NULL))::int AS not_carried
+        FROM binning_edits e JOIN binning_characteristics c ON c.id = e.characteristic_id
+       WHERE c.binning_id = b.id AND e.carried_from IS NOT NULL
+    ) k ON f.id IS NOT NULL
     CROSS JOIN LATERAL (
       SELECT count(*)::int AS characteristics, (count(*) FILTER (WHERE included))::int AS included
         FROM binning_characteristics WHERE binning_id = b.id

@@ -19,6 +19,7 @@ export interface ListedCharacteristic {
   readonly outOfTimeCsi: number | null;
   readonly edits: number;
   readonly editsWithoutReason: number;
+  readonly notCarried: number;
   readonly revision: number;
 }
 
@@ -38,7 +39,8 @@ const listed = `
   c.id, c.column_name AS "column", c.kind, c.position, c.included, c.left_out_reason AS "leftOutReason", c.summary,
   c.out_of_time_warnings AS "outOfTimeWarnings", c.out_of_time_csi AS "outOfTimeCsi", c.revision,
   (SELECT count(*)::int FROM binning_edits e WHERE e.characteristic_id = c.id AND e.place IS NOT NULL) AS edits,
-  (SELECT count(*)::int FROM binning_edits e WHERE e.characteristic_id = c.id AND e.place IS NOT NULL AND e.reason IS NULL) AS "editsWithoutReason"`;
+  (SELECT count(*)::int FROM binning_edits e WHERE e.characteristic_id = c.id AND e.place IS NOT NULL AND e.reason IS NULL) AS "editsWithoutReason",
+  (SELECT count(*)::int FROM binning_edits e WHERE e.characteristic_id = c.id AND e.not_carried IS NOT NULL) AS "notCarried"`;
 const whole = `${listed}, c.binning_id AS "binningId", c.definition, c.automatic, c.constraints, c.fine, c.out_of_time AS "outOfTime",
   p.name AS "changedBy", c.changed_at AS "changedAt"`;
 
@@ -52,6 +54,21 @@ export function listCharacteristics(
     `SELECT ${listed} FROM binning_characteristics c WHERE c.binning_id = $1 ORDER BY c.position`,
     [binningId],
     tx,
+  );
+}
+
+/** What an earlier binning decided about each characteristic, without its counts. */
+export function decidedEarlier(
+  sequelize: Sequelize,
+  binningId: string,
+): Promise<
+  (Pick<FoundCharacteristic, 'id' | 'column' | 'constraints' | 'included' | 'leftOutReason'> & { special: string[] })[]
+> {
+  return rows(
+    sequelize,
+    `SELECT c.id, c.column_name AS "column", c.constraints, c.included, c.left_out_reason AS "leftOutReason", c.fine -> 'special' AS special
+       FROM binning_characteristics c WHERE c.binning_id = $1`,
+    [binningId],
   );
 }
 

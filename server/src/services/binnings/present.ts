@@ -12,7 +12,7 @@ import type { Actor } from '../../models/person';
 import { abilitiesOnBinning, canEditBinning } from '../../policies/binnings';
 import { outOfTimeState } from '../out-of-time/cover';
 import { groupsOf } from './correlations';
-import { editsInEffect, presentEdit } from './edits';
+import { editsInEffect, editsNotCarried, presentEdit } from './edits';
 import type { FoundBinning } from './find-binning';
 import { type ListedCharacteristic, type OnBench, listCharacteristics } from './find-characteristic';
 
@@ -63,6 +63,7 @@ function presentSummary(one: ListedCharacteristic, outOfTime: OutOfTimeState, gr
     warnings: opened ? [...summary.warnings, ...outOfTimeWarnings] : summary.warnings,
     edits: rest.edits,
     editsWithoutReason: rest.editsWithoutReason,
+    notCarried: rest.notCarried,
     revision: rest.revision,
   };
 }
@@ -113,6 +114,7 @@ export async function presentDetail(
     constraints,
     fine: { ...fine, outOfTime: outOfTime === 'opened' ? characteristic.outOfTime : null },
     editList: (await editsInEffect(sequelize, characteristic.id, tx)).map(presentEdit),
+    notCarriedList: (await editsNotCarried(sequelize, characteristic.id, tx)).map(presentEdit),
     changedBy,
     changedAt: changedAt.toISOString(),
     abilities: canEditBinning(person, binning).allowed ? ['edit'] : [],

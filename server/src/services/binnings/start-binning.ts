@@ -28,6 +28,7 @@ export async function startBinning(
     definitionId: string;
     name: string;
     constraints: AskedConstraints;
+    fromBinningId?: string | null;
     requestId?: string;
   },
 ): Promise<FoundBinning> {
@@ -44,6 +45,15 @@ export async function startBinning(
       'No column of this sample is a characteristic that may be classed. Give columns that role first.',
     );
   }
+  const fromBinningId = asked.fromBinningId ?? null;
+  const from = fromBinningId === null ? null : await findBinning(context.sequelize, fromBinningId, tx);
+  if (fromBinningId !== null && (from?.modelId !== model.id || from.state !== 'ready')) {
+    throw invalidField(
+      'fromBinningId',
+      'no-such-binning',
+      'This model has no such binning that is ready. Choose another to start from.',
+    );
+  }
   const id = randomUUID();
   // Binnings of a model are numbered one after the other: the model's row is the queue.
   await rows(context.sequelize, 'SELECT id FROM models WHERE id = $1 FOR UPDATE', [model.id], tx);
@@ -54,7 +64,17 @@ export async function startBinning(
     tx,
   );
   await Binning.create(
-    { id, modelId: model.id, definitionId: definition.id, number: next, name, constraints, barred, createdBy: person.id },
+    {
+      id,
+      modelId: model.id,
+      definitionId: definition.id,
+      number: next,
+      name,
+      constraints,
+      barred,
+      fromBinningId,
+      createdBy: person.id,
+    },
     { transaction: tx },
   );
   const run = await startRun(context, tx, classBinningJob, {
@@ -72,7 +92,7 @@ export async function startBinning(
     entity: 'binning',
     entityId: id,
     modelId: model.id,
-    after: { name, definitionId: definition.id, constraints },
+    after: { name, definitionId: definition.id, constraints, ...(fromBinningId === null ? {} : { fromBinningId }) },
   });
   return (await findBinning(context.sequelize, id, tx))!;
 }

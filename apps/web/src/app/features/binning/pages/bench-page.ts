@@ -143,8 +143,18 @@ export class BenchPage {
     return `${plural(count, 'edit')} ${count === 1 ? 'has' : 'have'} no reason yet`;
   });
   protected readonly known = computed<ReadonlyMap<string, KnownEdit>>(
-    () => new Map((this.bench.detail()?.editList ?? []).map(({ id, by, at }) => [id, { by, at }])),
+    () =>
+      new Map(
+        (this.bench.detail()?.editList ?? []).map(({ id, by, at, carriedFrom }) => [
+          id,
+          { by, at, from: carriedFrom ? `${carriedFrom.binning}, ${carriedFrom.by}` : null },
+        ]),
+      ),
   );
+  protected readonly notCarried = computed(() => {
+    const list = this.bench.detail()?.notCarriedList ?? [];
+    return list.length > 0 ? list : null;
+  });
   protected readonly mode = computed<AxisMode>(() => {
     const asked = this.axis();
     if (asked === 'value' || asked === 'rows') return asked;

@@ -77,6 +77,7 @@ export class BinningsPage {
   protected readonly loading = new Task();
   protected readonly starting = new Task();
   protected readonly form = new FormGroup({
+    fromBinningId: new FormControl<string | null>(null),
     definitionId: new FormControl('', { nonNullable: true, validators: [Validators.required] }),
     name: new FormControl('', {
       nonNullable: true,
@@ -87,6 +88,8 @@ export class BinningsPage {
   private key = newIdempotencyKey();
 
   protected readonly all = computed(() => (this.list.hasValue() ? this.list.value().binnings : null));
+  /** Earlier binnings whose decisions a new one can start from. */
+  protected readonly ready = computed(() => (this.all() ?? []).filter(({ state }) => state === 'ready'));
   protected readonly mayStart = computed(() => this.list.hasValue() && this.list.value().abilities.includes('start-binning'));
   protected readonly running = computed(
     () => this.all()?.find(({ state }) => state === 'queued' || state === 'classing') ?? null,
@@ -154,7 +157,7 @@ export class BinningsPage {
       const points = await this.binnings.startingPoints(this.modelId());
       this.points.set(points);
       const number = (this.all()?.length ?? 0) + 1;
-      this.form.setValue({ definitionId: points[0]?.definitionId ?? '', name: `Binning ${number}` });
+      this.form.setValue({ definitionId: points[0]?.definitionId ?? '', name: `Binning ${number}`, fromBinningId: null });
     });
   }
 
@@ -163,10 +166,10 @@ export class BinningsPage {
     this.constraints.markAllAsTouched();
     if (this.form.invalid || this.constraints.invalid) return;
     void this.starting.run(async () => {
-      const { definitionId, name } = this.form.getRawValue();
+      const { definitionId, name, fromBinningId } = this.form.getRawValue();
       const binning = await this.binnings.start(
         this.modelId(),
-        { definitionId, name: name.trim(), constraints: constraintsOf(this.constraints) },
+        { definitionId, name: name.trim(), constraints: constraintsOf(this.constraints), fromBinningId },
         this.key,
       );
       this.key = newIdempotencyKey();

@@ -73,6 +73,15 @@ export class CharacteristicsPage {
   protected readonly all = computed(() => (this.list.hasValue() ? this.list.value().characteristics : null));
   protected readonly rows = computed(() => filtered(this.all() ?? [], this.part(), this.search() ?? ''));
   protected readonly finding = computed(() => (this.list.hasValue() ? this.list.value().finding : null));
+  protected readonly notCarried = computed(() => (this.binning.hasValue() ? (this.binning.value().from?.notCarried ?? 0) : 0));
+  protected readonly carriedWords = computed(() => {
+    const from = this.binning.hasValue() ? this.binning.value().from : null;
+    if (!from) return null;
+    const kept = `${plural(from.carried, 'edit')} by hand of ${from.name} ${from.carried === 1 ? 'is' : 'are'} carried over`;
+    return from.notCarried === 0
+      ? `${kept}; none is lost.`
+      : `${kept}; ${from.notCarried} ${from.notCarried === 1 ? 'makes' : 'make'} no sense on this sample.`;
+  });
   protected readonly picked = computed(() => (this.all() ?? []).filter(({ id }) => this.chosen().has(id)));
   protected readonly pickedWords = computed(() => `${plural(this.picked().length, 'characteristic')} chosen`);
   protected readonly someIncluded = computed(() => this.picked().some(({ included }) => included));

@@ -21,6 +21,7 @@ export const utilisation: CharacteristicDetail = {
   warnings: [],
   edits: 0,
   editsWithoutReason: 0,
+  notCarried: 0,
   revision: 3,
   definition: {
     column: 'utilisation',
@@ -75,6 +76,7 @@ export const utilisation: CharacteristicDetail = {
     outOfTime: null,
   },
   editList: [],
+  notCarriedList: [],
   changedBy: 'Modeller',
   changedAt: '2026-03-01T10:00:00.000Z',
   abilities: ['edit'],

@@ -2,7 +2,17 @@ import type { CharacteristicSummary } from '@tallystone/contracts/binnings/schem
 import { DASH, fixed } from '../../../ui/numbers';
 
 /** What part of the list is shown; stands in the address. */
-export const shownParts = ['all', 'included', 'left-out', 'warnings', 'unstable', 'same', 'edited', 'unexplained'] as const;
+export const shownParts = [
+  'all',
+  'included',
+  'left-out',
+  'warnings',
+  'unstable',
+  'same',
+  'edited',
+  'not-carried',
+  'unexplained',
+] as const;
 export type ShownPart = (typeof shownParts)[number];
 
 export const partWords: Record<ShownPart, string> = {
@@ -13,6 +23,7 @@ export const partWords: Record<ShownPart, string> = {
   unstable: 'Unstable',
   same: 'Saying the same as another',
   edited: 'Edited by hand',
+  'not-carried': 'Edits not carried over',
   unexplained: 'Edits not explained',
 };
 
@@ -24,6 +35,7 @@ const holds: Record<ShownPart, (one: CharacteristicSummary) => boolean> = {
   unstable: (one) => one.warnings.some(({ code }) => code.startsWith('unstable')),
   same: (one) => one.group !== null,
   edited: (one) => one.edits > 0,
+  'not-carried': (one) => one.notCarried > 0,
   unexplained: (one) => one.editsWithoutReason > 0,
 };
 

@@ -21,6 +21,8 @@ const reasons: readonly { readonly code: EditReason['code']; readonly label: str
 export interface KnownEdit {
   readonly by: string;
   readonly at: string;
+  /** Binning and person that it was carried over from. */
+  readonly from: string | null;
 }
 
 /** The manual edits in effect, each with its reason; one without stays marked until it has one. */
@@ -34,7 +36,9 @@ export interface KnownEdit {
         <div class="what">
           <span>{{ edit.what }}</span>
           @if (known().get(edit.id); as made) {
-            <span class="ts-caption">{{ made.by }}, {{ moment(made.at) }}</span>
+            <span class="ts-caption"
+              >{{ made.by }}, {{ moment(made.at) }}{{ made.from ? '; carried over from ' + made.from : '' }}</span
+            >
           }
         </div>
         @if (editable()) {
