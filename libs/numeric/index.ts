@@ -20,6 +20,7 @@ export * from './resampling/stability';
 export * from './binning/information-value';
 export * from './binning/fine-classes';
 export * from './binning/classing';
+export * from './binning/choose-trend';
 export * from './binning/categories';
 export * from './independent/proximal-gradient';
 export * from './diagnostics/collinearity';

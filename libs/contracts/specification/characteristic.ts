@@ -39,6 +39,8 @@ const automatic: z.ZodType<AutomaticClassing, unknown> = z.strictObject({
   mostBins: z.number().int().min(1).max(MOST_BINS).default(8),
   smallestDifference: finite.nonnegative().default(0.05),
   trend: z.enum(['any', 'rising', 'falling', 'one-peak', 'one-valley']).default('any'),
+  // No default is written in: a specification from before this key keeps its fingerprint.
+  criterion: z.enum(['information value', 'deviance']).optional(),
 });
 
 const byHand = z.strictObject({ made: z.literal('by hand') });

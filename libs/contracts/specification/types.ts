@@ -97,6 +97,8 @@ export interface AutomaticClassing {
   mostBins: number;
   smallestDifference: number;
   trend: Trend;
+  /** The largest information value when left out. */
+  criterion?: 'information value' | 'deviance' | undefined;
 }
 
 export type Classing = AutomaticClassing | { made: 'by hand' };

@@ -73,7 +73,84 @@ const constraintSets = fc.record({
   trend: fc.constantFrom<Constraints['trend']>('any', 'rising', 'falling', 'one-peak', 'one-valley'),
 });
 
+/** Deviance of the bad rates of the bins that cuts make, from its definition over rows. */
+function devianceOf(fine: Fine, cuts: readonly number[]): number {
+  const bins = merged(fine, cuts);
+  return bins.goods.reduce((sum, goods, i) => {
+    const rate = bins.bads[i] / (goods + bins.bads[i]);
+    return sum - 2 * (goods * Math.log(1 - rate) + bins.bads[i] * Math.log(rate));
+  }, 0);
+}
+
+const everyPartition = (classes: number): number[][] =>
+  Array.from({ length: 2 ** (classes - 1) }, (_, mask) =>
+    Array.from({ length: classes - 1 }, (_, k) => k + 1).filter((k) => mask & (1 << (k - 1))),
+  );
+
 describe('classNumeric', () => {
+  it('is exactly as good as trying every set of cuts, by deviance as well', () => {
+    let compared = 0;
+    fc.assert(
+      fc.property(fineClasses, constraintSets, (fine, constraints) => {
+        const { cuts } = classNumeric(fine, { ...constraints, criterion: 'deviance' });
+        const all = everyPartition(fine.rows.length).filter((one) => allowed(fine, one, constraints));
+        if (all.length === 0) {
+          expect(cuts).toEqual([]);
+          return;
+        }
+        compared++;
+        expect(allowed(fine, cuts, constraints)).toBe(true);
+        const smallest = Math.min(...all.map((one) => devianceOf(fine, one)));
+        // Sums of at most ten terms of a few hundred.
+        expect(devianceOf(fine, cuts)).toBeCloseTo(smallest, 8);
+      }),
+      { numRuns: 400 },
+    );
+    expect(compared).toBeGreaterThan(100);
+  });
+
+  it('is never worse than any other partition of many fine classes, by either criterion', () => {
+    const many = fc
+      .array(fc.tuple(fc.integer({ min: 0, max: 60 }), fc.integer({ min: 0, max: 30 })), { minLength: 30, maxLength: 60 })
+      .map((cells): Fine => ({
+        goods: cells.map(([g]) => g),
+        bads: cells.map(([, b]) => b),
+        rows: cells.map(([g, b]) => g + b),
+      }));
+    const trials = fc.array(fc.array(fc.double({ min: 0, max: 1, noNaN: true }), { maxLength: 7 }), {
+      minLength: 40,
+      maxLength: 40,
+    });
+    let compared = 0;
+    fc.assert(
+      fc.property(
+        many,
+        trials,
+        fc.constantFrom<Constraints['trend']>('any', 'rising', 'falling', 'one-peak', 'one-valley'),
+        (fine, tried, trend) => {
+          const constraints = { ...open, smallestShare: 0.02, trend };
+          const iv = (cuts: readonly number[]): number => {
+            const bins = merged(fine, cuts);
+            return weightOfEvidence(bins.goods, bins.bads, { amount: 0, when: 'never' }).informationValue;
+          };
+          const byValue = classNumeric(fine, constraints).cuts;
+          const byDeviance = classNumeric(fine, { ...constraints, criterion: 'deviance' }).cuts;
+          for (const shares of tried) {
+            const cuts = [...new Set(shares.map((share) => 1 + Math.floor(share * (fine.rows.length - 1))))]
+              .filter((cut) => cut < fine.rows.length)
+              .sort((a, b) => a - b);
+            if (!allowed(fine, cuts, constraints)) continue;
+            compared++;
+            expect(iv(byValue)).toBeGreaterThanOrEqual(iv(cuts) - 1e-9);
+            expect(devianceOf(fine, byDeviance)).toBeLessThanOrEqual(devianceOf(fine, cuts) + 1e-7);
+          }
+        },
+      ),
+      { numRuns: 60 },
+    );
+    expect(compared).toBeGreaterThan(200);
+  });
+
   it('is exactly as good as trying every set of cuts', () => {
     fc.assert(
       fc.property(fineClasses, constraintSets, (fine, constraints) => {

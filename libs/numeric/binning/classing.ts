@@ -12,6 +12,8 @@ export interface Constraints {
   readonly smallestDifference: number;
   /** Of weight of evidence over the bins; "one-peak" rises then falls, "one-valley" falls then rises, one part may be empty. */
   readonly trend: 'any' | 'rising' | 'falling' | 'one-peak' | 'one-valley';
+  /** What is best: the largest information value (when left out), or the smallest deviance of the bad rates of the bins. */
+  readonly criterion?: 'information value' | 'deviance' | undefined;
 }
 
 export type Trend = 'flat' | 'rising' | 'falling' | 'one-peak' | 'one-valley' | 'mixed';
@@ -32,9 +34,9 @@ export interface NumericClassing {
 }
 
 /**
- * Merges neighbouring fine classes into the bins with the largest information value that satisfy every constraint: exact, by dynamic programming
- * over (last bin, number of bins, part of the trend). Each bin has a good and a bad at least, so that no weight of evidence is infinite. Of
- * solutions with equal information value the one with fewer bins is taken. When even a single bin breaks a constraint, a single bin is returned.
+ * Merges neighbouring fine classes into the bins that are best by the criterion (largest information value, or smallest deviance) among all that satisfy
+ * every constraint: exact, by dynamic programming over (last bin, number of bins, part of the trend). Each bin has a good and a bad at least, so that no
+ * weight of evidence is infinite. Of solutions that are equally good the one with fewer bins is taken. When even a single bin breaks a constraint, a single bin is returned.
  *
  * @param fine goods and bads (weighted) and rows of each fine class in the order of values
  * @param constraints what every bin has to satisfy
@@ -42,7 +44,8 @@ export interface NumericClassing {
  * @returns cuts (numbers of fine classes), information value in nats and the trend found
  * @throws NumericError for NaN, negative counts, different lengths
  * @example classNumeric({ goods: [10, 20, 60], bads: [20, 18, 10], rows: [30, 38, 70] }, constraints).cuts // [1, 2] where nothing forbids three bins
- * Source: R. Bellman, Dynamic Programming, 1957; W. D. Fisher, On grouping for maximum homogeneity, JASA 53, 1958 (contiguous optimal grouping).
+ * Source: R. Bellman, Dynamic Programming, 1957; W. D. Fisher, On grouping for maximum homogeneity, JASA 53, 1958 (contiguous optimal grouping);
+ * the deviance as a measure of a partition: L. Breiman et al., Classification and Regression Trees, 1984 (from memory).
  */
 export function classNumeric(
   fine: FineCounts,
@@ -131,6 +134,15 @@ class BinTable {
     return goods > 0 && bads > 0 ? Math.log(goods / bads) : 0;
   }
 
+  /** What a bin adds to the criterion, which is made as large as it can be. */
+  worth(start: number, end: number): number {
+    if (this.constraints.criterion !== 'deviance') return this.value(start, end);
+    const goods = this.goods[end] - this.goods[start];
+    const bads = this.bads[end] - this.bads[start];
+    const all = goods + bads;
+    return (goods > 0 ? goods * Math.log(goods / all) : 0) + (bads > 0 ? bads * Math.log(bads / all) : 0);
+  }
+
   value(start: number, end: number): number {
     const goods = (this.goods[end] - this.goods[start]) / this.totalGoods;
     const bads = (this.bads[end] - this.bads[start]) / this.totalBads;
@@ -184,7 +196,7 @@ function bestCuts(table: BinTable, constraints: Constraints): number[] {
   let layer: State[][] = Array.from({ length: classes + 1 }, () => []);
   for (let end = 1; end <= classes; end++) {
     if (table.allowed(0, end))
-      layer[end].push({ start: 0, end, woe: table.woe(0, end), part: 0, value: table.value(0, end), previous: null });
+      layer[end].push({ start: 0, end, woe: table.woe(0, end), part: 0, value: table.worth(0, end), previous: null });
   }
   let best: State | null = layer[classes][0] ?? null;
   for (let bins = 2; bins <= constraints.mostBins; bins++) {
@@ -194,7 +206,7 @@ function bestCuts(table: BinTable, constraints: Constraints): number[] {
       for (let end = start + 1; end <= classes; end++) {
         if (!table.allowed(start, end)) continue;
         const woe = table.woe(start, end);
-        const value = table.value(start, end);
+        const value = table.worth(start, end);
         for (const part of turning ? ([0, 1] as const) : ([0] as const)) {
           let from: State | null = null;
           for (const state of layer[start]) {

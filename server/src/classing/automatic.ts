@@ -2,6 +2,7 @@ import type { AskedConstraints, Bins, Constraints, Fine, SlotCounts } from '@tal
 import type { Warning } from '@tallystone/contracts/binnings/schema';
 import { type BenchReading, benchWarnings, classCount, readBench, readingInterval, readingOfIv } from '@tallystone/numeric/bench';
 import { classCategories } from '@tallystone/numeric/binning/categories';
+import { chooseTrend } from '@tallystone/numeric/binning/choose-trend';
 import { classNumeric } from '@tallystone/numeric/binning/classing';
 
 export interface ClassedBins {
@@ -12,7 +13,7 @@ export interface ClassedBins {
 
 /**
  * Bins of one characteristic under constraints, from its fine classes; special codes and missing in bins of their own. "monotone" is classed
- * both ways and takes the one with the larger information value.
+ * both ways and takes the one with the larger information value; "cross-validated" takes the trend that predicts best what it has not seen.
  */
 export function classFine(fine: Fine, asked: AskedConstraints): ClassedBins {
   const own = { special: fine.special.map(() => 'own' as const), missing: 'own' as const };
@@ -35,13 +36,26 @@ export function classFine(fine: Fine, asked: AskedConstraints): ClassedBins {
     };
   }
   const known = { rows: rows.slice(0, classes), goods: goods.slice(0, classes), bads: bads.slice(0, classes) };
-  const trends: Constraints['trend'][] = asked.trend === 'monotone' ? ['rising', 'falling'] : [asked.trend];
+  const trends = trendsOf(known, asked, totals);
   const tried = trends.map((trend) => {
     const constraints: Constraints = { ...asked, trend };
     return { constraints, ...classNumeric(known, constraints, totals) };
   });
   const best = tried.reduce((a, b) => (b.informationValue > a.informationValue ? b : a));
   return { constraints: best.constraints, bins: { kind: 'numeric', edges: best.cuts.map((cut) => fine.edges[cut - 1]), ...own } };
+}
+
+/** Folds and seed of the choice of a trend: fixed, so that the same counts have the same trend everywhere. */
+const choice = { folds: 5, seed: 1 };
+
+function trendsOf(
+  known: { rows: number[]; goods: number[]; bads: number[] },
+  asked: AskedConstraints,
+  totals: { goods: number; bads: number },
+): Constraints['trend'][] {
+  if (asked.trend === 'monotone') return ['rising', 'falling'];
+  if (asked.trend !== 'cross-validated') return [asked.trend];
+  return [chooseTrend(known, { ...asked, trend: 'any' }, { ...choice, totals }).trend];
 }
 
 export interface Summarised {

@@ -30,4 +30,7 @@ export function withBins(entry: BinnedCharacteristic, bins: Bins, classing: Clas
   throw new Error(`"${entry.column}" is ${entry.kind} and cannot have ${bins.kind} bins`);
 }
 
-export const automaticClassing = (constraints: Constraints): Classing => ({ made: 'automatic', ...constraints });
+/** The largest information value is what a specification means when it says nothing, so it says nothing. */
+export function automaticClassing({ criterion, ...constraints }: Constraints): Classing {
+  return { made: 'automatic', ...constraints, ...(criterion === 'deviance' ? { criterion } : {}) };
+}

@@ -76,6 +76,6 @@ export function automaticGroups(
 }
 
 function constraintsOf(settings: AutomaticClassing): Constraints {
-  const { smallestShare, smallestGoods, smallestBads, mostBins, smallestDifference, trend } = settings;
-  return { smallestShare, smallestGoods, smallestBads, mostBins, smallestDifference, trend };
+  const { smallestShare, smallestGoods, smallestBads, mostBins, smallestDifference, trend, criterion } = settings;
+  return { smallestShare, smallestGoods, smallestBads, mostBins, smallestDifference, trend, criterion };
 }

@@ -6,9 +6,11 @@ import { MatSelectModule } from '@angular/material/select';
 import type { AskedConstraints } from '@tallystone/contracts/binnings/bins';
 
 type Trend = AskedConstraints['trend'];
+type Criterion = NonNullable<AskedConstraints['criterion']>;
 
 export const trendChoices: readonly { readonly value: Trend; readonly label: string }[] = [
   { value: 'monotone', label: 'Monotone, whichever way tells more' },
+  { value: 'cross-validated', label: 'Whichever predicts best in cross-validation' },
   { value: 'any', label: 'Any' },
   { value: 'rising', label: 'WOE rises: risk falls along the values' },
   { value: 'falling', label: 'WOE falls: risk rises along the values' },
@@ -39,13 +41,15 @@ export function constraintsForm(from: AskedConstraints = usualConstraints) {
     mostBins: number(from.mostBins, Validators.min(1), Validators.max(50)),
     smallestDifference: number(from.smallestDifference, Validators.min(0), Validators.max(5)),
     trend: new FormControl<Trend>(from.trend, { nonNullable: true }),
+    criterion: new FormControl<Criterion>(from.criterion ?? 'information value', { nonNullable: true }),
   });
 }
 export type ConstraintsForm = ReturnType<typeof constraintsForm>;
 
 export const constraintsOf = (form: ConstraintsForm): AskedConstraints => {
   const values = form.getRawValue();
-  return { ...values, smallestShare: values.smallestShare / 100 };
+  const { criterion, ...rest } = values;
+  return { ...rest, smallestShare: values.smallestShare / 100, ...(criterion === 'deviance' ? { criterion } : {}) };
 };
 
 /** Fields for the constraints of automatic classing. */
@@ -96,13 +100,29 @@ export const constraintsOf = (form: ConstraintsForm): AskedConstraints => {
           }
         </mat-select>
       </mat-form-field>
+      <mat-form-field class="wide">
+        <mat-label>Best is</mat-label>
+        <mat-select formControlName="criterion">
+          <mat-option value="information value">The largest information value</mat-option>
+          <mat-option value="deviance">The smallest deviance</mat-option>
+        </mat-select>
+      </mat-form-field>
     </div>
+    <p class="ts-caption method">
+      The best of all partitions of the fine classes under these constraints, found exactly by dynamic programming (R. Bellman,
+      1957; W. D. Fisher, 1958). Categories stand in order of bad rate, rare ones pooled (L. Breiman and others, 1984, from
+      memory). A trend by cross-validation has the smallest deviance over five folds, classed anew in each (M. Stone, 1974).
+    </p>
   `,
   styles: `
     .fields {
       display: grid;
       grid-template-columns: repeat(auto-fit, minmax(min(100%, 200px), 1fr));
       gap: 16px;
+    }
+    .method {
+      margin-top: 8px;
+      max-width: 64ch;
     }
     .wide {
       grid-column: 1 / -1;
