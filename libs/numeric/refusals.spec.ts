@@ -10,8 +10,36 @@ const pd = [0.1, 0.2, NaN, 0.4];
 const problem: numeric.FitProblem = { columns: [scores], outcome, penalty: { mixing: 1, standardize: true } };
 const level = { seed: 1, level: NaN };
 
+const limits: numeric.Constraints = {
+  smallestShare: 0,
+  smallestGoods: 0,
+  smallestBads: 0,
+  mostBins: 3,
+  smallestDifference: 0,
+  trend: 'any',
+};
+const codes = Uint8Array.of(0, 1, 0, 1);
+
 /** A call with something that is no number, and where in it. */
 const calls: [string, () => unknown, object][] = [
+  ['values', () => numeric.fineEdgesOfCounts([1, NaN], [1, 1], 2), { name: 'values', index: 1 }],
+  ['counts', () => numeric.fineEdgesOfCounts([1, 2], [1, NaN], 2), { name: 'counts', index: 1 }],
+  [
+    'goods',
+    () => numeric.chooseTrend({ goods: [1, NaN], bads: [1, 1], rows: [2, 2] }, limits, { folds: 2, seed: 1 }),
+    { name: 'goods', index: 1 },
+  ],
+  [
+    'values',
+    () => numeric.codedCorrelation([{ codes, values: [1, NaN] }], Uint8Array.of(1, 1, 1, 1)),
+    { name: 'values of column 0', index: 1 },
+  ],
+  [
+    'weights',
+    () => numeric.codedCorrelation([{ codes, values: [1, 2] }], Uint8Array.of(1, 1, 1, 1), nan),
+    { name: 'weights', index: 1 },
+  ],
+  ['threshold', () => numeric.clustersAt([], 1, NaN), { name: 'threshold' }],
   ['column', () => numeric.fitAt({ ...problem, columns: [scores, nan] }, 0.1), { name: 'columns', column: 1, index: 1 }],
   ['column', () => numeric.fitIndependently({ ...problem, columns: [nan] }, 0.1), { name: 'columns', column: 0, index: 1 }],
   ['column', () => numeric.fitPath({ ...problem, columns: [nan] }, { lambdas: [1] }), { name: 'columns', column: 0, index: 1 }],
@@ -153,6 +181,8 @@ describe('what is no number is refused with its place, never passed on', () => {
       'roundAwayFromZero',
       'ascendingOrder',
     ];
+    // A correlation of a column without variance is NaN, and these know it.
+    const ofCorrelations = ['inflationOf', 'hierarchy'];
     const ofResults = [
       'summarise',
       'stabilityOfCoefficients',
@@ -164,7 +194,7 @@ describe('what is no number is refused with its place, never passed on', () => {
     const byOthers = ['largestLambda', 'scoresByOutcome', 'stabilityParts', 'binomialTail', 'correlation', 'standardErrors'];
     const checked = ['strataOf', 'drawStratified'];
     const elsewhere = ['classNumeric', 'classCategories', 'scaleToPoints'];
-    const known = new Set([...passedOn, ...ofResults, ...byOthers, ...checked, ...elsewhere]);
+    const known = new Set([...passedOn, ...ofCorrelations, ...ofResults, ...byOthers, ...checked, ...elsewhere]);
     const functions = Object.entries(numeric as Record<string, unknown>).filter(
       ([name, value]) => typeof value === 'function' && !/^require|Error$/.test(name) && !(name in engine),
     );

@@ -1,4 +1,4 @@
-import { requireThat } from '../checks';
+import { requireFinite, requireThat } from '../checks';
 import { Generator } from '../random/generator';
 import { multinomial } from '../resampling/bootstrap';
 import { classNumeric, type Constraints, type FineCounts } from './classing';
@@ -34,6 +34,7 @@ export function chooseTrend(
 ): ChosenTrend {
   const { folds, seed } = options;
   requireThat(Number.isInteger(folds) && folds >= 2, 'folds', 'at least two folds are needed.');
+  for (const name of ['goods', 'bads', 'rows'] as const) requireFinite(name, fine[name]);
   const parts = partCounts(fine, folds, new Generator(seed));
   const deviances = triedTrends.map((trend) => {
     let deviance = 0;

@@ -26,6 +26,7 @@ export function fineEdges(values: Float64Array, count: number): number[] {
 export function fineEdgesOfCounts(values: ArrayLike<number>, counts: ArrayLike<number>, count: number): number[] {
   requireSameLength('counts', counts.length, values.length);
   requireFinite('values', values);
+  requireFinite('counts', counts);
   const order = Uint32Array.from(Array.from(values, (_, i) => i).filter((i) => counts[i] > 0)).sort(
     (a, b) => values[a] - values[b],
   );

@@ -1,4 +1,4 @@
-import { requireThat } from '../checks';
+import { requireNumber, requireThat } from '../checks';
 
 /** Two characteristics that correlate this much say nearly the same. Common practice; a limit is the lender's to set. */
 export const nearlyTheSame = 0.7;
@@ -58,6 +58,7 @@ export function hierarchy(matrix: ArrayLike<number>, count: number): Merge[] {
  * @example clustersAt(hierarchy(matrix, 3), 3, 0.7) // [[0, 1], [2]]
  */
 export function clustersAt(merges: readonly Merge[], count: number, threshold: number): number[][] {
+  requireNumber('threshold', threshold);
   const clusters = new Map<number, readonly number[]>(Array.from({ length: count }, (_, j) => [j, [j]]));
   // A correlation of exactly the threshold counts, whatever 1 - r rounds to.
   for (const { left, right, height } of merges) {

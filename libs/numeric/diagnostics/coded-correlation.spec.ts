@@ -96,18 +96,16 @@ describe('hierarchy', () => {
   it('keeps its promise: in a cluster every two correlate by the threshold, and no two clusters could still be one', () => {
     fc.assert(
       fc.property(
-        fc
-          .integer({ min: 1, max: 8 })
-          .chain((count) =>
-            fc.tuple(
-              fc.constant(count),
-              fc.array(fc.double({ min: -1, max: 1, noNaN: true }), {
-                minLength: (count * (count - 1)) / 2,
-                maxLength: (count * (count - 1)) / 2,
-              }),
-              fc.double({ min: 0.05, max: 0.95, noNaN: true }),
-            ),
+        fc.integer({ min: 1, max: 8 }).chain((count) =>
+          fc.tuple(
+            fc.constant(count),
+            fc.array(fc.double({ min: -1, max: 1, noNaN: true }), {
+              minLength: (count * (count - 1)) / 2,
+              maxLength: (count * (count - 1)) / 2,
+            }),
+            fc.double({ min: 0.05, max: 0.95, noNaN: true }),
           ),
+        ),
         ([count, values, threshold]) => {
           const matrix = symmetric(count, values);
           const clusters = clustersAt(hierarchy(matrix, count), count, threshold);

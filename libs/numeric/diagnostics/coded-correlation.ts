@@ -1,4 +1,4 @@
-import { requireSameLength, requireThat } from '../checks';
+import { requireFinite, requireSameLength, requireThat } from '../checks';
 
 /** A column kept as one byte a row and a value for each code: WOE by bin. */
 export interface ValuedCodes {
@@ -25,7 +25,11 @@ export function codedCorrelation(
   weights?: ArrayLike<number> | null,
 ): Float64Array {
   const count = columns.length;
-  columns.forEach(({ codes }, j) => requireSameLength(`column ${j}`, codes.length, use.length));
+  columns.forEach(({ codes, values }, j) => {
+    requireSameLength(`column ${j}`, codes.length, use.length);
+    requireFinite(`values of column ${j}`, values);
+  });
+  if (weights) requireFinite('weights', weights);
   const rows: number[] | Uint32Array = rowsInUse(use);
   requireThat(rows.length > 0, 'use', 'no row is in use.');
   let total = 0;
