@@ -59,7 +59,7 @@ interface TableRow {
           <tr>
             <th scope="row">{{ row.label }}</th>
             @for (cell of row.cells; track $index) {
-              @if (isNarrow($index) && cell !== '') {
+              @if (isCutOff($index, cell)) {
                 <td [class.selected]="isSelected($index)" [attr.aria-label]="cell" [title]="cell">…</td>
               } @else {
                 <td [class.selected]="isSelected($index)">{{ cell }}</td>
@@ -203,8 +203,8 @@ export class BinsTable {
   }
 
   /** A figure that is cut off would be read as another one: too narrow a bin shows none, and the table view has them all. */
-  protected isNarrow(index: number): boolean {
-    return (this.widths()[index + 1] ?? 0) < 42;
+  protected isCutOff(index: number, cell: string): boolean {
+    return (this.widths()[index + 1] ?? 0) < cell.length * 6.6 + 4;
   }
 
   protected toggle(bin: number): void {

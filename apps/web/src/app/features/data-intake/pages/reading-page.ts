@@ -61,8 +61,6 @@ import { SampleSteps } from '../ui/sample-steps';
           </div>
         }
         <ts-preview-table [preview]="view" />
-      } @else if (!mayRead() && sample.hasValue()) {
-        <p class="ts-second">{{ settledWords() }}</p>
       } @else if (looking.busy()) {
         <p class="ts-second" role="status">Looking at the file</p>
       }
@@ -118,7 +116,8 @@ export class ReadingPage {
   );
   protected readonly finding = computed(() => {
     const preview = this.preview();
-    return preview ? readingFinding(preview) : null;
+    if (preview) return readingFinding(preview);
+    return this.sample.hasValue() && !this.mayRead() ? this.settledWords() : null;
   });
   /** What the last reading, and then what the preview, found wrong with the file. */
   protected readonly fileProblems = computed(() => {
@@ -128,7 +127,7 @@ export class ReadingPage {
     return problems.length === 0 ? null : new Problem(422, 'file', 'The file cannot be read like this', '', problems);
   });
   protected readonly signWords = signWords;
-  protected readonly settledWords = computed(() =>
+  private readonly settledWords = computed(() =>
     this.sample.hasValue() && this.sample.value().definitions > 0
       ? 'The file was read with these choices, and they stay: a confirmed definition rests on them.'
       : 'How the file is read is for the modellers of this model to say.',

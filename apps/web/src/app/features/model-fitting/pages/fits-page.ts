@@ -100,14 +100,13 @@ export class FitsPage {
   });
 
   protected readonly columns: readonly Column<FitSummary>[] = [
+    { key: 'name', label: 'Fit', value: (fit) => `${fit.number}. ${fit.name}`, link: (fit) => [fit.id] },
     { key: 'pick', label: 'Compare', value: () => '', sortable: false },
-    { key: 'number', label: 'No.', kind: 'count', value: (fit) => fit.number },
-    { key: 'name', label: 'Fit', value: (fit) => fit.name, link: (fit) => [fit.id] },
     { key: 'penalty', label: 'Penalty', value: (fit) => kindOf(fit.mixing) },
     { key: 'binning', label: 'Binning', value: (fit) => `${fit.binningName}${fit.stale ? ' (changed since)' : ''}` },
     { key: 'state', label: 'State', value: (fit) => fit.state },
     { key: 'kept', label: 'Kept', kind: 'count', value: (fit) => fit.choice?.kept ?? null },
-    { key: 'lambda', label: 'Chosen penalty', kind: 'number', value: (fit) => fit.choice?.lambda ?? null },
+    { key: 'lambda', label: 'Chosen penalty', kind: 'number', value: (fit) => fit.choice?.lambda ?? null, format: (fit) => significant(fit.choice?.lambda, 2) },
     { key: 'auc', label: 'Hold-out AUC', kind: 'metric', value: (fit) => fit.holdOutAuc },
     { key: 'by', label: 'By', value: (fit) => fit.createdBy },
     { key: 'at', label: 'Fitted', kind: 'moment', value: (fit) => fit.createdAt },

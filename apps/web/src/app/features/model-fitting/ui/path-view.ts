@@ -125,7 +125,9 @@ export function decisionAt(path: FitPath, index: number): string | null {
   if (against.length > 0) {
     const names = against.slice(0, 3).map((entry) => entry.label);
     const more = against.length > 3 ? ` and ${against.length - 3} more` : '';
-    return `${names.join(', ')}${more}: the coefficient runs against WOE. Constrain the sign, leave it out, or justify it before submission.`;
+    return against.length === 1
+      ? `${names[0]}: the coefficient runs against WOE. Constrain the sign, leave it out, or justify it before submission.`
+      : `${names.join(', ')}${more}: the coefficients run against WOE. Constrain the signs, leave them out, or justify them before submission.`;
   }
   const next = path.kept.findIndex((kept, i) => i > index && kept > path.kept[index]);
   const { oneStandardError, minimum } = path.crossValidation;

@@ -26,6 +26,13 @@ import { type ChallengeRow, challengeFinding, challengeRows, foreignNote } from 
       </p>
     }
   `,
+  styles: `
+    :host {
+      display: grid;
+      grid-template-columns: minmax(0, 1fr);
+      gap: 8px;
+    }
+  `,
 })
 export class ChallengeTable {
   readonly challenge = input.required<Challenge>();

@@ -38,7 +38,7 @@ export class StabilityFigure {
   protected readonly chart = computed(() =>
     intervalChart(
       this.ordered().map((row) => ({ value: row.coefficient, lower: row.lower, upper: row.upper })),
-      { left: this.narrow() ? 104 : 190, right: this.wide() - (this.narrow() ? 92 : 190), rowHeight: 26, decimals: 1 },
+      { left: this.narrow() ? 126 : 190, right: this.wide() - (this.narrow() ? 92 : 190), rowHeight: 26, decimals: 1 },
     ),
   );
   protected readonly rows = computed(() => {
@@ -46,7 +46,7 @@ export class StabilityFigure {
     return this.ordered().map((row, i) => ({
       ...rows[i],
       column: row.column,
-      name: clip(row.label, this.narrow() ? 14 : 27),
+      name: clip(row.label, this.narrow() ? 17 : 27),
       kept: row.coefficient !== 0,
       flagged: row.coefficient !== 0 && unsure(row),
       selected: share(row.selected, 0),
@@ -72,12 +72,12 @@ export class StabilityFigure {
   protected readonly binChart = computed(() =>
     intervalChart(
       this.bins().map(({ points, lower, upper }) => ({ value: points, lower, upper })),
-      { left: this.narrow() ? 104 : 190, right: this.wide() - (this.narrow() ? 92 : 190), rowHeight: 26, decimals: 0 },
+      { left: this.narrow() ? 126 : 190, right: this.wide() - (this.narrow() ? 92 : 190), rowHeight: 26, decimals: 0 },
     ),
   );
   protected readonly binRows = computed(() => {
     const { rows } = this.binChart();
-    return this.bins().map((bin, i) => ({ ...rows[i], key: `${i} ${bin.label}`, name: clip(binWords(bin.label), this.narrow() ? 14 : 27), words: pointsWords(bin), spoken: `${binWords(bin.label)}: ${pointsWords(bin)} points against neutral` }));
+    return this.bins().map((bin, i) => ({ ...rows[i], key: `${i} ${bin.label}`, name: clip(binWords(bin.label), this.narrow() ? 19 : 27), words: pointsWords(bin), spoken: `${binWords(bin.label)}: ${pointsWords(bin)} points against neutral` }));
   });
   protected readonly binTitle = computed(() => `Points of ${this.choices().find((row) => row.column === this.chosen())?.label ?? ''} over resamples`);
   protected readonly binTable = computed<FigureTable<BinRow>>(() => {
