@@ -1,0 +1,72 @@
+/**
+ * Times classing: every characteristic of a sample from the column store, automatically, in the product's own worker threads; then one of them anew, from
+ * its fine classes, as a re-class does.
+ *
+ *   npm run bench:binning                                      1,000,000 rows of 100 characteristics, in words
+ *   npm run bench:binning -- --rows 100000 --columns 40 --json one JSON object on standard output
+ *   ... --trend cross-validated                                the trend of each characteristic chosen by cross-validation
+ */
+import { AskedConstraints } from '@tallystone/contracts/binnings/bins';
+import { Sequelize } from 'sequelize';
+import { classCharacteristics } from '../../../server/src/services/binnings/class-characteristics';
+import { stopThreads, runInThread, threadCount } from '../../../server/src/threads/run-in-thread';
+import { createTestDatabase } from '../../support/database';
+import { storeSample } from './store';
+
+const args = process.argv.slice(2);
+const option = (name: string): string | null => (args.includes(name) ? args[args.indexOf(name) + 1] : null);
+const rows = Number(option('--rows') ?? 1_000_000);
+const count = Number(option('--columns') ?? 100);
+const json = args.includes('--json');
+const constraints = AskedConstraints.parse({ trend: option('--trend') ?? 'monotone' });
+const data = {
+  sha256: null,
+  delimiter: ',',
+  encoding: 'utf-8',
+  decimal: '.',
+  thousands: null,
+  trim: true,
+  missing: ['', 'NA'],
+} as const;
+const say = (line: string): void => console.error(line);
+
+const database = await createTestDatabase();
+const sequelize = new Sequelize(database.appUrl, { logging: false, dialect: 'postgres' });
+try {
+  say(`storing ${rows} rows of ${count} columns`);
+  const sample = await storeSample(sequelize, database.ownerUrl, rows, count);
+  const asked = { ...sample, data: { ...data, missing: [...data.missing] }, constraints, earlier: new Map() };
+  const before = process.cpuUsage();
+  const began = performance.now();
+  const { classed, unusable } = await classCharacteristics(sequelize, asked, {
+    signal: new AbortController().signal,
+    onDone: () => undefined,
+  });
+  const seconds = (performance.now() - began) / 1000;
+  // Of this process with its threads: a machine that others work on stretches the time, not this.
+  const { user, system } = process.cpuUsage(before);
+  if (classed.length !== count) throw new Error(`${unusable.length} columns could not be classed: ${unusable[0]?.reason}`);
+  const milliseconds: number[] = [];
+  for (let turn = 0; turn < 60; turn++) {
+    const { fine, outOfTime } = classed[turn % classed.length];
+    const from = performance.now();
+    await runInThread('binning.reclass', { characteristics: [{ fine, outOfTime, constraints }] });
+    milliseconds.push(performance.now() - from);
+  }
+  milliseconds.sort((a, b) => a - b);
+  const result = {
+    rows,
+    characteristics: count,
+    threads: threadCount(),
+    trend: constraints.trend,
+    seconds,
+    cpuSeconds: (user + system) / 1e6,
+    millisecondsPerCharacteristic: (1000 * seconds) / count,
+    reclass: { p50: milliseconds[30], p95: milliseconds[57] },
+  };
+  console.log(json ? JSON.stringify(result) : result);
+} finally {
+  await stopThreads();
+  await sequelize.close();
+  await database.drop();
+}
