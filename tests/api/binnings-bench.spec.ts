@@ -47,7 +47,8 @@ describe('the bench of one characteristic', () => {
 
   it('takes a reason later without a new revision, and records it', async () => {
     const { path, etag, detail } = await benchOf(modeller, binning.id, 'age');
-    const [{ by: _by, at: _at, inEffect: _inEffect, ...edit }] = detail.editList;
+    const [{ by: _by, at: _at, inEffect: _inEffect, carriedFrom: _carriedFrom, notCarried: _notCarried, ...edit }] =
+      detail.editList;
     const reason = { code: 'round number' as const, text: '' };
     const saved = await colleague
       .put(path)
@@ -77,7 +78,8 @@ describe('the bench of one characteristic', () => {
 
   it('undoes and redoes, with a record of both and the history whole', async () => {
     const { path, etag, detail } = await benchOf(modeller, binning.id, 'age');
-    const [{ by: _by, at: _at, inEffect: _inEffect, ...edit }] = detail.editList;
+    const [{ by: _by, at: _at, inEffect: _inEffect, carriedFrom: _carriedFrom, notCarried: _notCarried, ...edit }] =
+      detail.editList;
     const undone = await modeller.put(path).set('If-Match', etag).send({ bins: detail.automatic, edits: [] }).expect(200);
     expect(undone.body).toMatchObject({ editList: [], edits: 0, current: detail.automatic });
     expect(undone.body.definition.classing.made).toBe('automatic');
@@ -151,7 +153,14 @@ describe('the bench of one characteristic', () => {
 
   it('does not let a saved edit say something else, or be another characteristic’s', async () => {
     const age = await benchOf(modeller, binning.id, 'age');
-    const { by: _by, at: _at, inEffect: _inEffect, ...edit } = age.detail.editList[0];
+    const {
+      by: _by,
+      at: _at,
+      inEffect: _inEffect,
+      carriedFrom: _carriedFrom,
+      notCarried: _notCarried,
+      ...edit
+    } = age.detail.editList[0];
     await modeller
       .put(age.path)
       .set('If-Match', age.etag)
@@ -223,7 +232,9 @@ describe('the bench of one characteristic', () => {
       const detail = read.body as CharacteristicDetail;
       const bins = numeric(detail);
       const free = detail.fine.edges.filter((edge) => !bins.edges.includes(edge));
-      const known = detail.editList.map(({ by: _by, at: _at, inEffect: _inEffect, ...edit }) => edit);
+      const known = detail.editList.map(
+        ({ by: _by, at: _at, inEffect: _inEffect, carriedFrom: _carriedFrom, notCarried: _notCarried, ...edit }) => edit,
+      );
       const edits = racers.map((_, racer) =>
         sent(bins, bins.edges.length < 20 ? addCut(detail.fine, bins, free[racer]) : mergeNumeric(detail.fine, bins, racer)),
       );

@@ -182,7 +182,7 @@ describe('codes for fits', () => {
     expect(first).toEqual(expected);
     const [{ count }] = (
       await sequelize.query(
-        `SELECT count(*)::int AS count FROM binning_codes k JOIN binning_characteristics c ON c.id = k.characteristic_id WHERE c.binning_id = '${binning.id}'`,
+        `SELECT count(*)::int AS count FROM binning_codes k JOIN binning_characteristics c ON c.id = k.characteristic_id WHERE c.binning_id = '${binning.id}' AND c.included`,
       )
     )[0] as { count: number }[];
     expect(count).toBe(included.length);

@@ -24,7 +24,7 @@ export interface ChosenTrend {
  * @param fine goods and bads (weighted) and rows of each fine class in the order of values
  * @param constraints its trend is not looked at
  * @throws NumericError for fewer than two folds
- * @example chooseTrend({ goods, bads, rows }, constraints, { folds: 5, seed: 1 }).trend // 'one-peak'
+ * @example chooseTrend({ goods: [80, 60, 30, 55], bads: [20, 30, 50, 10], rows: [100, 90, 80, 65] }, constraints, { folds: 5, seed: 1 }).trend // for instance 'one-valley'
  * Source: M. Stone, Cross-validatory choice and assessment of statistical predictions, J. Royal Statistical Society B 36, 1974.
  */
 export function chooseTrend(

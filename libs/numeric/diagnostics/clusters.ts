@@ -55,7 +55,7 @@ export function hierarchy(matrix: ArrayLike<number>, count: number): Merge[] {
 /**
  * The clusters of a hierarchy in which every two columns correlate by at least `threshold`; a column alone is a cluster of one. In order of their
  * lowest column.
- * @example clustersAt(hierarchy(matrix, 3), 3, 0.7) // [[0, 1], [2]]
+ * @example clustersAt(hierarchy([1, 0.9, 0.1, 0.9, 1, 0.2, 0.1, 0.2, 1], 3), 3, 0.7) // [[0, 1], [2]]
  */
 export function clustersAt(merges: readonly Merge[], count: number, threshold: number): number[][] {
   requireNumber('threshold', threshold);
