@@ -167,7 +167,7 @@ describe('files that are not read here are refused before anything starts', () =
 
 describe('a reading that is cancelled', () => {
   it('is acknowledged at once, stops, and leaves nothing behind', async () => {
-    const { id } = await modeller.upload(modelId, large(80), 'large.csv', 8 * 1024 * 1024);
+    const { id } = await modeller.upload(modelId, large(30), 'large.csv', 8 * 1024 * 1024);
     const path = `/api/models/${modelId}/samples/${id}`;
     const { body: preview } = await modeller.post(`${path}/preview`).send({}).expect(200);
     const { body: run } = await modeller.post(`${path}/readings`).send(preview.choices).expect(202);
