@@ -13,6 +13,7 @@ export class Heartbeat {
   private client: Client | null = null;
   private timer: NodeJS.Timeout | null = null;
   private stopped = false;
+  private beating: Promise<void> = Promise.resolve();
 
   constructor(
     private readonly url: string,
@@ -37,10 +38,16 @@ export class Heartbeat {
   async stop(): Promise<void> {
     this.stopped = true;
     if (this.timer) clearTimeout(this.timer);
+    // A beat under way may be connecting: its connection would outlive the attempt, and keep a process that has nothing else to do.
+    await this.beating;
     await this.client?.end().catch(() => undefined);
   }
 
-  private async beat(): Promise<void> {
+  private beat(): Promise<void> {
+    return (this.beating = this.beatNow());
+  }
+
+  private async beatNow(): Promise<void> {
     try {
       this.client ??= await this.connect();
       const { rows } = await this.client.query<{ state: string; attempt: number; ended_at: Date | null }>(
