@@ -1,7 +1,6 @@
 import type { Bins } from '@tallystone/contracts/binnings/bins';
 import type { Sequelize, Transaction } from 'sequelize';
 import { randomUUID } from 'node:crypto';
-import { rows } from '../../database/sql';
 import { BinningEdit } from '../../models/binning';
 import type { Actor } from '../../models/person';
 import { appendRecord } from '../record/append';
