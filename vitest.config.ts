@@ -18,6 +18,8 @@ export default defineConfig({
   test: {
     include: ['libs/**/*.spec.ts', 'server/**/*.spec.ts', 'data-demo/**/*.spec.ts', 'tests/{reference,api,faults,support}/**/*.spec.ts'],
     exclude: ['**/node_modules/**', ...(long ? [] : ['**/*.long.spec.ts'])],
+    // One process for many files, which shares what they import: importing took longer than testing. Each file opens and closes what it uses.
+    isolate: false,
     passWithNoTests: false,
     testTimeout: 30_000,
     hookTimeout: 60_000,

@@ -54,9 +54,9 @@ async function post<T>(page: Page, address: string, data: unknown): Promise<T> {
 }
 
 /** A model that nobody has worked on yet, entered by the modeller on whose page this is. */
-export const enterEmptyModel = (page: Page): Promise<Model> =>
+export const enterEmptyModel = (page: Page, name: string): Promise<Model> =>
   post<Model>(page, '/api/models', {
-    name: 'Credit cards, behavioural scorecard',
+    name,
     purpose: 'Ranks open accounts by the odds that they stay in order over the next twelve months.',
     product: 'Credit card',
     population: 'Accounts open for six months or longer, in order when scored',

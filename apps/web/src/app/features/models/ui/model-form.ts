@@ -89,9 +89,12 @@ export const tiers: readonly { readonly tier: ModelFields['materialityTier']; re
             <mat-radio-button [value]="entry.tier">{{ entry.text }}</mat-radio-button>
           }
         </mat-radio-group>
-        @if (form().controls.materialityTier.touched && form().controls.materialityTier.invalid) {
-          <p class="wrong" role="alert">Choose a tier. What each tier asks for is your policy.</p>
-        }
+        <!-- Keeps its line while empty: what is below must not move away from under a pressed mouse. -->
+        <p class="wrong" role="alert">
+          @if (form().controls.materialityTier.touched && form().controls.materialityTier.invalid) {
+            Choose a tier. What each tier asks for is your policy.
+          }
+        </p>
       </fieldset>
       <mat-form-field>
         <mat-label>Intended use</mat-label>
@@ -122,6 +125,8 @@ export const tiers: readonly { readonly tier: ModelFields['materialityTier']; re
       gap: 0 16px;
     }
     .wrong {
+      min-height: 1.5em;
+      margin: 0;
       color: var(--ts-bad);
       font-size: 13px;
     }

@@ -36,9 +36,12 @@ export const conditionsOf = (text: string): string[] =>
           <mat-radio-button value="fit with conditions">Fit with conditions</mat-radio-button>
           <mat-radio-button value="not fit">Not fit: the version is rejected</mat-radio-button>
         </mat-radio-group>
-        @if (form.controls.conclusion.touched && form.controls.conclusion.invalid) {
-          <p class="wrong" role="alert">Choose a conclusion.</p>
-        }
+        <!-- Keeps its line while empty: pressing the mouse on a choice takes the focus from another, and what moves then is not clicked. -->
+        <p class="wrong" role="alert">
+          @if (form.controls.conclusion.touched && form.controls.conclusion.invalid) {
+            Choose a conclusion.
+          }
+        </p>
         @if (conditional()) {
           <mat-form-field>
             <mat-label>Conditions, one a line</mat-label>
@@ -68,6 +71,8 @@ export const conditionsOf = (text: string): string[] =>
       display: grid;
     }
     .wrong {
+      min-height: 1.5em;
+      margin: 0;
       color: var(--ts-bad);
       font-size: 13px;
     }
