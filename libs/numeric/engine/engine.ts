@@ -21,6 +21,9 @@ export const PATH_TOLERANCE = 1e-6;
 /** What singles are asked for: their rounding adds some 1e-7 to the residual. */
 const SINGLE_TOLERANCE = 9e-7;
 
+/** Where doubles prove a point, singles stop that many times above what is asked for: the model's next step, which needs no pass, takes a point the rest of the way. */
+const SINGLES_STOP = 5;
+
 /** Neighbouring lambdas on the way to a cold one. */
 const APPROACH_RATIO = 0.5;
 const BATCH = 8;
@@ -209,19 +212,20 @@ export class Engine {
     const single = Math.max(SINGLE_TOLERANCE, Math.min(tolerance, PATH_TOLERANCE) * 0.9);
     const targets: Target[] = [
       ...approach.map((lambda) => ({ lambda, tolerance: Math.max(1e-2 * lambda, single) })),
-      ...lambdas.map((lambda) => ({ lambda, tolerance: single })),
+      ...lambdas.map((lambda) => ({ lambda, tolerance: SINGLES_STOP * single })),
     ];
     let batch: Solved[] = [];
     let before = start;
     solvePath(this.passes, start, targets, {
       precision: 'single',
       standardisation: this.full,
+      ahead: true,
       onSolved: (solved, place) => {
         if (place < approach.length) return false;
         batch.push(solved);
         if (batch.length < BATCH && place < targets.length - 1) return false;
         let stop = false;
-        const proofs = batch.map(({ lambda, point }) => ({ lambda, tolerance, from: point }));
+        const proofs = batch.map(({ lambda, point, ahead = point }) => ({ lambda, tolerance, from: ahead }));
         const found = batch;
         batch = [];
         solvePath(this.passes, before, proofs, {

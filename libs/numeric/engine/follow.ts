@@ -1,4 +1,5 @@
 import { CurvaturesAlong, LaneCurvature, withTotal, type Curvature } from './curvature';
+import { foretell, missedOfStep } from './forecast';
 import { copyPoint, pointOf, residualAt, slopeAlong, type Lane, type Point } from './lane';
 import { LaneModel } from './lane-model';
 import type { Passes } from './passes';
@@ -135,9 +136,9 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
       state.stalled = 0;
       if (follower.place >= lambdas.length) return;
       copyPoint(point, before);
-      const shift = guideMiss(lane, follower.place);
-      for (let k = 0; k <= size; k++) shift[k] += missed[k] + state.trend[k];
       const curvature = curvatureFor(lane);
+      const shift = missedOfStep(curvature, guide[follower.place - 1], guide[follower.place]);
+      for (let k = 0; k <= size; k++) shift[k] += missed[k] + state.trend[k];
       model.solve(curvature, s, lambdas[follower.place], before, point, goal, shift);
       foretell(curvature, before, point, shift, foretold);
       state.travelled = true;
@@ -169,31 +170,6 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
     let change = heldOutGradient[0] * (finish.intercept - point.intercept);
     for (let j = 0; j < size; j++) change += heldOutGradient[j + 1] * (finish.t[j] - point.t[j]);
     return heldOut / passes.layout.foldWeights[leftOut] + change;
-  }
-
-  /** What the lane's model misses of the guide's own step to a place, intercept first. */
-  function guideMiss(lane: number, place: number): Float64Array {
-    const from = guide[place - 1];
-    const to = guide[place];
-    const missed = new Float64Array(size + 1);
-    foretell(curvatureFor(lane), from, to, null, missed);
-    missed[0] = to.gradientOfIntercept - missed[0];
-    for (let j = 0; j < size; j++) missed[j + 1] = to.gradient[j] - missed[j + 1];
-    return missed;
-  }
-
-  function foretell(curvature: Curvature, from: Point, to: Point, shift: Float64Array | null, result: Float64Array): void {
-    const { gram } = curvature;
-    const width = size + 1;
-    result[0] = from.gradientOfIntercept;
-    result.set(from.gradient, 1);
-    if (shift) for (let k = 0; k < width; k++) result[k] += shift[k];
-    add(0, to.intercept - from.intercept);
-    for (let j = 0; j < size; j++) add(j + 1, to.t[j] - from.t[j]);
-    function add(row: number, step: number): void {
-      if (step === 0) return;
-      for (let k = 0; k < width; k++) result[k] += step * gram[row * width + k];
-    }
   }
 }
 

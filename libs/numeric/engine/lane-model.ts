@@ -1,4 +1,4 @@
-import { factorise, solveFactorised } from '../penalised/cholesky';
+import { factoriseRows, solveFactorised } from '../penalised/cholesky';
 import { softThreshold, violation } from '../penalised/penalty';
 import type { Curvature } from './curvature';
 import type { Point } from './lane';
@@ -9,23 +9,30 @@ const MOST_SWEEPS = 4;
 
 /**
  * Minimises a lane's quadratic model plus penalty: Newton steps on the free coordinates, each up to the first that would change sign or pass a limit;
- * coordinates enter by coordinate descent alone. The factor of the free set is kept from solve to solve while set and curvature stay the same.
+ * coordinates enter by coordinate descent alone. While the curvature stays the same the factor of the free set is kept from solve to solve: a coordinate that
+ * enters adds a row to it, one that leaves has the rows after its own made anew.
  */
 export class LaneModel {
   private readonly free: Int32Array;
   private readonly step: Float64Array;
   private readonly rest: Float64Array;
+  private readonly trial: Float64Array;
   private factor: Float64Array;
-  private keptSet: Int32Array;
+  /** Coordinates in the order of the factor's rows. */
+  private readonly keptSet: Int32Array;
+  private readonly isFree: Uint8Array;
   private kept = 0;
   private keptCurvature: Curvature | null = null;
   private keptLambda = NaN;
+  private keptRidge = 0;
 
   constructor(private readonly size: number) {
     this.free = new Int32Array(size);
     this.keptSet = new Int32Array(size);
     this.step = new Float64Array(size);
     this.rest = new Float64Array(size);
+    this.trial = new Float64Array(size);
+    this.isFree = new Uint8Array(size);
     this.factor = new Float64Array(0);
   }
 
@@ -51,7 +58,8 @@ export class LaneModel {
     for (let j = 0; j < size; j++) {
       rest[j] = from.gradient[j] + (gradientShift ? gradientShift[j + 1] : 0) - (gram[(j + 1) * width] / gram[0]) * g0;
     }
-    const t = Float64Array.from(from.t);
+    const t = this.trial;
+    t.set(from.t);
     for (let round = 0; round < MOST_ROUNDS; round++) {
       while (this.newton(curvature, s, lambda, t)) {
         // A coordinate left the free set on the way; the others go on without it.
@@ -107,7 +115,7 @@ export class LaneModel {
       const j = free[a];
       step[a] = -(rest[j] + lambda * (Math.sign(t[j]) * s.absolute[j] + s.square[j] * t[j]));
     }
-    solveFactorised(this.factor, count, step);
+    solveFactorised(this.factor, count, step, size);
     let length = 1;
     let stopper = -1;
     let stop = 0;
@@ -133,14 +141,38 @@ export class LaneModel {
     return stopper >= 0;
   }
 
+  /** Leaves the free coordinates in the order of the factor's rows. */
   private factorised(curvature: Curvature, s: Standardisation, lambda: number, count: number): boolean {
-    const { size, free } = this;
+    const { size, free, keptSet, isFree } = this;
     let ridge = false;
     for (let a = 0; a < count && !ridge; a++) ridge = s.square[free[a]] > 0;
-    let same = this.keptCurvature === curvature && this.kept === count && (!ridge || this.keptLambda === lambda);
-    for (let a = 0; a < count && same; a++) same = this.keptSet[a] === free[a];
-    if (same) return true;
-    if (this.factor.length < count * count) this.factor = new Float64Array(size * size);
+    let from = 0;
+    if (this.keptCurvature === curvature && (!ridge || this.keptLambda === lambda)) {
+      for (let a = 0; a < count; a++) isFree[free[a]] = 1;
+      let place = 0;
+      for (let k = 0; k < this.kept; k++) {
+        const j = keptSet[k];
+        if (isFree[j] === 0) continue;
+        // Up to the first that left, the rows stand.
+        if (k === place) from = k + 1;
+        keptSet[place++] = j;
+        isFree[j] = 0;
+      }
+      for (let a = 0; a < count; a++) {
+        const j = free[a];
+        if (isFree[j] === 0) continue;
+        keptSet[place++] = j;
+        isFree[j] = 0;
+      }
+      if (from === count && this.kept === count) {
+        free.set(keptSet.subarray(0, count));
+        return true;
+      }
+      // A ridge that a singular set needed is tried without again.
+      if (this.keptRidge > 0) from = 0;
+    } else keptSet.set(free.subarray(0, count));
+    free.set(keptSet.subarray(0, count));
+    if (this.factor.length === 0) this.factor = new Float64Array(size * size);
     const { factor } = this;
     // A set that is singular in spite of the faint ridge is solved with a stronger one: rounds repeat until the violation is gone.
     for (let more = 0; ; more = more === 0 ? 1e-6 : more * 100) {
@@ -148,17 +180,20 @@ export class LaneModel {
         this.keptCurvature = null;
         return false;
       }
-      for (let a = 0; a < count; a++) {
+      if (more > 0) from = 0;
+      for (let a = from; a < count; a++) {
         const row = free[a] * size;
-        for (let b = 0; b <= a; b++) factor[a * count + b] = curvature.hessian[row + free[b]];
-        factor[a * count + a] = factor[a * count + a] * (1 + more) + lambda * s.square[free[a]];
+        for (let b = 0; b <= a; b++) factor[a * size + b] = curvature.hessian[row + free[b]];
+        factor[a * size + a] = factor[a * size + a] * (1 + more) + lambda * s.square[free[a]];
       }
-      if (factorise(factor, count)) break;
+      if (factoriseRows(factor, size, from, count)) {
+        this.keptRidge = more;
+        break;
+      }
     }
     this.keptCurvature = curvature;
     this.keptLambda = lambda;
     this.kept = count;
-    this.keptSet.set(free.subarray(0, count));
     return true;
   }
 }

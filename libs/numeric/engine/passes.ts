@@ -14,7 +14,6 @@ export class Passes {
   private readonly f32: Float32Array;
   private readonly f64: Float64Array;
   private readonly sums: Float64Array;
-  private readonly ownSums: Float64Array;
   private readonly heldSums: Float64Array;
   private readonly gradient: Float64Array;
 
@@ -28,7 +27,6 @@ export class Passes {
     this.f64 = new Float64Array(buffer);
     const rows = layout.bins + layout.linear + 2;
     this.sums = new Float64Array(rows * LANES_SINGLE);
-    this.ownSums = new Float64Array(rows);
     this.heldSums = new Float64Array(rows);
     this.gradient = new Float64Array(layout.columns.length + 1);
     crew.join(layout.machine, layout.at);
@@ -152,39 +150,57 @@ export class Passes {
       const from = first + c * size;
       for (let k = 0; k < size; k++) sums[k] += f64[from + k];
     }
-    const own = this.ownSums;
-    const rows = bins + linear + 2;
+    const last = bins + linear + 1;
     lanes.forEach((lane, l) => {
       const { point, standardisation, leftOut } = lane;
-      for (let k = 0; k < rows; k++) own[k] = sums[k * width + l];
-      if (leftOut >= 0) {
+      if (leftOut < 0) {
+        this.gradientOf(sums, width, l, null, standardisation, standardisation.totalWeight, this.gradient);
+        point.loss = double ? sums[last * width + l] / standardisation.totalWeight : NaN;
+      } else {
         const held = this.heldSums;
-        held.fill(0);
         const { start, end } = layout.chunksOfFold[leftOut];
-        for (let c = start; c < end; c++) {
-          for (let k = 0; k < rows; k++) held[k] += f64[first + c * size + k * width + l];
+        for (let k = 0; k <= last; k++) held[k] = f64[first + start * size + k * width + l];
+        for (let c = start + 1; c < end; c++) {
+          for (let k = 0; k <= last; k++) held[k] += f64[first + c * size + k * width + l];
         }
-        for (let k = 0; k < rows; k++) own[k] -= held[k];
-        lane.heldOut = held[rows - 1];
-        if (lane.heldOutGradient) this.gradientOf(held, standardisation, layout.foldWeights[leftOut], lane.heldOutGradient);
+        lane.heldOut = held[last];
+        if (lane.heldOutGradient)
+          this.gradientOf(held, 1, 0, null, standardisation, layout.foldWeights[leftOut], lane.heldOutGradient);
+        this.gradientOf(sums, width, l, held, standardisation, standardisation.totalWeight, this.gradient);
+        point.loss = double ? (sums[last * width + l] - held[last]) / standardisation.totalWeight : NaN;
       }
-      this.gradientOf(own, standardisation, standardisation.totalWeight, this.gradient);
       point.gradientOfIntercept = this.gradient[0];
       for (let j = 0; j < point.gradient.length; j++) point.gradient[j] = this.gradient[j + 1];
-      point.loss = double ? own[rows - 1] / standardisation.totalWeight : NaN;
     });
   }
 
-  /** From sums by bin to the gradient of the mean loss, the intercept's part first. */
-  private gradientOf(sums: Float64Array, s: Standardisation, weight: number, gradient: Float64Array): void {
+  /**
+   * From sums by bin to the gradient of the mean loss, the intercept's part first.
+   * @param sums of the lane `l` of `width`
+   * @param less what is taken off them, or null
+   */
+  private gradientOf(
+    sums: Float64Array,
+    width: number,
+    l: number,
+    less: Float64Array | null,
+    s: Standardisation,
+    weight: number,
+    gradient: Float64Array,
+  ): void {
     const { bins, columns, linear, coded } = this.layout;
-    gradient[0] = sums[bins + linear] / weight;
+    const { values, used } = s;
+    const at = (k: number): number => sums[k * width + l] - (less ? less[k] : 0);
+    gradient[0] = at(bins + linear) / weight;
     for (let j = 0; j < columns.length; j++) {
-      const { firstBin, bins: own } = columns[j];
       let sum = 0;
-      if (s.used[j] === 0) sum = 0;
-      else if (firstBin < 0) sum = sums[bins + j - coded];
-      else for (let b = firstBin; b < firstBin + own; b++) sum += s.values[b] * sums[b];
+      if (used[j] !== 0) {
+        const { firstBin, bins: own } = columns[j];
+        const end = firstBin + own;
+        if (firstBin < 0) sum = at(bins + j - coded);
+        else if (less) for (let b = firstBin; b < end; b++) sum += values[b] * (sums[b * width + l] - less[b]);
+        else for (let b = firstBin; b < end; b++) sum += values[b] * sums[b * width + l];
+      }
       gradient[j + 1] = sum / weight;
     }
   }

@@ -2,12 +2,15 @@ import { curvatureOf, withTotal, type Curvature } from './curvature';
 import { copyPoint, penaltyAt, pointOf, residualAt, slopeAlong, type Lane, type Point } from './lane';
 import { LaneModel } from './lane-model';
 import { lanesOf, type Passes, type Precision } from './passes';
+import { Secants } from './secants';
 import type { Standardisation } from './standardisation';
 
 /** One place on a path, solved. */
 export interface Solved {
   readonly lambda: number;
   readonly point: Point;
+  /** Where the model leads from there, if that was asked for: nearer to the optimum, no pass has been there. */
+  readonly ahead?: Point;
   readonly residual: number;
   readonly objective: number;
   /** Passes it took part in. */
@@ -28,7 +31,8 @@ interface Rider extends Lane {
   readonly model: LaneModel;
   /** The point before the last step, with what was known there. */
   readonly before: Point;
-  evaluated: boolean;
+  /** `before` holds where the last step began. */
+  left: boolean;
   /** The last step was a model's step from the lane's own point. */
   stepped: boolean;
   passes: number;
@@ -38,6 +42,8 @@ interface Rider extends Lane {
 
 /** Lambdas between two curvatures. */
 const REFRESH = 4;
+/** Steps whose exact gradients correct the curvature. */
+const SECANTS = 24;
 const MOST_PASSES = 60;
 const MOST_STALLED = 8;
 
@@ -48,6 +54,8 @@ export interface WavefrontOptions {
   /** Hold the penalised coordinates at 0. */
   readonly standardisation: Standardisation;
   readonly lanes?: number;
+  /** Gives `ahead` of each solved point, for whoever goes on from it. */
+  readonly ahead?: boolean;
 }
 
 /**
@@ -65,16 +73,22 @@ export function solvePath(passes: Passes, start: Point | null, targets: readonly
   let next = 0;
   let reported = 0;
   let curvature: Curvature | null = null;
+  let gram: Float64Array | null = null;
+  const secants = new Secants(size, SECANTS);
   let curvatureAt = -Infinity;
   let latest: Point | null = start;
+  /** The last of the lanes, as the last pass found it: the lane itself has moved on since, and its gradient with the old point. */
+  let furthest: Point | null = null;
   const refresh = (point: Point, place: number): void => {
     curvatureAt = place;
-    curvature = curvatureOf(withTotal(passes.gram(point, s, 'small')).total, size);
+    gram = withTotal(passes.gram(point, s, 'small')).total;
+    secants.applyTo(gram);
+    curvature = curvatureOf(gram, size);
   };
   /** The curvature near a place: taken anew only once the lanes have moved on, in the middle of those that have a point yet. */
   const near = (place: number): Curvature => {
     if (!curvature || place >= curvatureAt + REFRESH) {
-      const middle = riders.filter(({ evaluated }) => evaluated).at(Math.min(2, riders.length - 1));
+      const middle = riders.filter(({ passes: made }) => made > 0).at(Math.min(2, riders.length - 1));
       refresh(middle?.point ?? latest ?? riders[0].point, place);
     }
     return curvature as unknown as Curvature;
@@ -92,7 +106,7 @@ export function solvePath(passes: Passes, start: Point | null, targets: readonly
         leftOut: -1,
         heldOut: 0,
         model: models[next % width],
-        evaluated: false,
+        left: false,
         stepped: false,
         passes: 0,
         residual: Infinity,
@@ -100,8 +114,10 @@ export function solvePath(passes: Passes, start: Point | null, targets: readonly
       };
       if (target.from) copyPoint(target.from, rider.point);
       else {
-        const from = riders.filter(({ evaluated }) => evaluated).at(-1)?.point ?? latest;
+        const from = furthest ?? latest;
         if (!from) throw new Error('A path without a start needs a point for each target.');
+        copyPoint(from, rider.before);
+        rider.left = true;
         rider.model.solve(near(riders[0]?.place ?? next), s, target.lambda, from, rider.point, goalOf(target));
       }
       riders.push(rider);
@@ -123,18 +139,23 @@ export function solvePath(passes: Passes, start: Point | null, targets: readonly
       const finished = rider.residual <= target.tolerance;
       const failed = !Number.isFinite(rider.residual) || rider.passes >= MOST_PASSES || rider.stalled >= MOST_STALLED;
       if (finished || failed) {
+        const ahead = options.ahead ? pointOf(size) : undefined;
+        if (ahead) rider.model.solve(near(rider.place), s, target.lambda, point, ahead, goalOf(target));
         solved[rider.place] = {
           lambda: target.lambda,
           point,
+          ahead,
           residual: rider.residual,
           objective: point.loss + penaltyAt(point, s, target.lambda),
           passes: rider.passes,
           converged: finished,
         };
       } else kept.push(rider);
-      rider.evaluated = true;
       points.push(point);
     }
+    let told = false;
+    for (const { left, before, point } of riders) if (left && gram && secants.learn(gram, before, point)) told = true;
+    if (told && gram) curvature = curvatureOf(gram, size);
     // Poor progress says that the curvature no longer serves; it is taken anew at the lane that is furthest behind.
     if (contraction > 0.5 && kept.length > 0) refresh(kept[0].point, kept[0].place);
     const bases = points.map((point) => {
@@ -143,6 +164,7 @@ export function solvePath(passes: Passes, start: Point | null, targets: readonly
       copyPoint(point, copy);
       return copy;
     });
+    furthest = bases.at(-1) ?? null;
     for (const rider of kept) {
       advance(rider, riders.indexOf(rider), bases, s, near(kept[0].place));
     }
@@ -168,6 +190,7 @@ function advance(rider: Rider, index: number, bases: readonly (Point | null)[], 
     if (slope > 0.5 * Math.abs(was) && rider.residual > 10 * target.tolerance) {
       point.intercept = (before.intercept + own.intercept) / 2;
       for (let j = 0; j < point.t.length; j++) point.t[j] = (before.t[j] + own.t[j]) / 2;
+      rider.left = false;
       return;
     }
   }
@@ -184,6 +207,7 @@ function advance(rider: Rider, index: number, bases: readonly (Point | null)[], 
   }
   rider.stepped = base === own;
   copyPoint(base, before);
+  rider.left = true;
   if (!rider.stepped) rider.residual = Infinity;
   rider.model.solve(curvature, s, target.lambda, base, point, goalOf(target));
 }

@@ -3,32 +3,44 @@
  * @returns false when a pivot is not clearly positive: the matrix is singular to working precision
  */
 export function factorise(matrix: Float64Array, size: number): boolean {
-  for (let j = 0; j < size; j++) {
-    let pivot = matrix[j * size + j];
+  return factoriseRows(matrix, size, 0, size);
+}
+
+/**
+ * Rows `from` to `to` - 1 of a factorisation whose rows before are factorised already: a row rests on those before it alone.
+ * @param matrix lower triangle, row-major, rows `stride` apart; in the rows before `from` the factor
+ */
+export function factoriseRows(matrix: Float64Array, stride: number, from: number, to: number): boolean {
+  for (let i = from; i < to; i++) {
+    const row = i * stride;
+    let pivot = matrix[row + i];
     const before = pivot;
-    for (let k = 0; k < j; k++) pivot -= matrix[j * size + k] * matrix[j * size + k];
-    if (!(pivot > 1e-11 * before)) return false;
-    const root = Math.sqrt(pivot);
-    matrix[j * size + j] = root;
-    for (let i = j + 1; i < size; i++) {
-      let sum = matrix[i * size + j];
-      for (let k = 0; k < j; k++) sum -= matrix[i * size + k] * matrix[j * size + k];
-      matrix[i * size + j] = sum / root;
+    for (let j = 0; j < i; j++) {
+      const other = j * stride;
+      let sum = matrix[row + j];
+      for (let k = 0; k < j; k++) sum -= matrix[row + k] * matrix[other + k];
+      const value = sum / matrix[other + j];
+      matrix[row + j] = value;
+      pivot -= value * value;
     }
+    if (!(pivot > 1e-11 * before)) return false;
+    matrix[row + i] = Math.sqrt(pivot);
   }
   return true;
 }
 
-/** Solves L L' x = b in place, L as left by `factorise`. */
-export function solveFactorised(factor: Float64Array, size: number, b: Float64Array): void {
+/** Solves L L' x = b in place, L as left by `factorise`, its rows `stride` apart. */
+export function solveFactorised(factor: Float64Array, size: number, b: Float64Array, stride = size): void {
   for (let i = 0; i < size; i++) {
+    const row = i * stride;
     let sum = b[i];
-    for (let k = 0; k < i; k++) sum -= factor[i * size + k] * b[k];
-    b[i] = sum / factor[i * size + i];
+    for (let k = 0; k < i; k++) sum -= factor[row + k] * b[k];
+    b[i] = sum / factor[row + i];
   }
   for (let i = size - 1; i >= 0; i--) {
-    let sum = b[i];
-    for (let k = i + 1; k < size; k++) sum -= factor[k * size + i] * b[k];
-    b[i] = sum / factor[i * size + i];
+    const value = b[i] / factor[i * stride + i];
+    b[i] = value;
+    const row = i * stride;
+    for (let k = 0; k < i; k++) b[k] -= factor[row + k] * value;
   }
 }
