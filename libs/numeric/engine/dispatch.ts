@@ -6,6 +6,7 @@ import {
   trainingOf,
   type CrossValidation,
   type CrossValidationOptions,
+  type FoldFailure,
 } from '../penalised/folds';
 import { withDuplicatesHeld } from '../penalised/duplicates';
 import { fitAt, fitPath, type FitOptions } from '../penalised/path';
@@ -168,18 +169,19 @@ export function fastCrossValidation(
       onProgress: options.onProgress,
     });
     let { optimalityResidual } = found;
-    let converged = true;
+    const failures: FoldFailure[] = [];
     const given: number[] = [];
     const results = found.folds.map((result, k) => {
       if (result) return result;
       given.push(k + 1);
-      return fitFold(problem, folds, k + 1, lambdas, options, (fit) => {
+      return fitFold(problem, folds, k + 1, lambdas, options, (fit, index) => {
         optimalityResidual = Math.max(optimalityResidual, fit.optimalityResidual);
-        if (fit.status !== 'converged') converged = false;
+        if (fit.status !== 'converged') failures.push({ fold: k + 1, index, status: fit.status });
       });
     });
     const reason = given.length > 0 ? `the oracle fitted folds ${given.join(', ')}, which the engine gave up` : null;
-    return { ...summarise(lambdas, results), optimalityResidual, converged, solver: 'engine', reason };
+    const told = { ...summarise(lambdas, results), optimalityResidual, converged: failures.length === 0 };
+    return { ...told, ...(failures.length > 0 ? { failures } : {}), solver: 'engine', reason };
   });
 }
 

@@ -37,7 +37,7 @@ function expectSamePath(problem: FitProblem, grid: Grid): void {
   const oracle = fitPath(problem, grid, { tolerance: 1e-10 });
   expect([engine.solver, engine.reason]).toEqual(['engine', null]);
   expect(engine.fits).toHaveLength(oracle.fits.length);
-  expect(engine.stoppedEarly).toBe(oracle.stoppedEarly);
+  expect([engine.stoppedEarly, engine.stoppedBecause]).toEqual([oracle.stoppedEarly, oracle.stoppedBecause]);
   expect(Math.abs(engine.largestLambda / oracle.largestLambda - 1)).toBeLessThan(1e-10);
   expect(Math.abs(engine.nullDeviance / oracle.nullDeviance - 1)).toBeLessThan(1e-12);
   engine.fits.forEach((fit, k) => expectSameFit(problem, fit, oracle.fits[k]));
@@ -101,6 +101,21 @@ describe('the engine finds the path of the oracle', () => {
     columns[2] = new Float64Array(ROWS).fill(0.7);
     columns[3] = Float64Array.from(problem.weights ?? [], (w, i) => (w > 0 ? 1 : i));
     expectSamePath({ ...problem, columns }, automatic);
+  });
+});
+
+describe('columns on scales of 1e-300 and 1e300', () => {
+  it.each([1e-300, 1e-160, 1e160, 1e300])('times %d: the same fit, its coefficients divided by it', (scale) => {
+    const penalty = { mixing: 0.7, standardize: true };
+    const problem = problemWith(penalty, { linear: true });
+    const columns = problem.columns.map((column, j) => (j === 0 || j === 7 ? column.map((value) => value * scale) : column));
+    const wanted = fitAt(problem, 0.004, { tolerance: 1e-10 });
+    const fit = fastFit({ ...problem, columns }, 0.004, { tolerance: 1e-10 });
+    expect([fit.solver, fit.status]).toEqual(['engine', 'converged']);
+    expect(wanted.coefficients[0] * wanted.coefficients[7]).not.toBe(0);
+    fit.coefficients.forEach((b, j) =>
+      expect(Math.abs((j === 0 || j === 7 ? b * scale : b) - wanted.coefficients[j])).toBeLessThan(2e-8),
+    );
   });
 });
 

@@ -187,7 +187,7 @@ export class Engine {
     const tolerance = options.tolerance ?? PATH_TOLERANCE;
     const fits: Fit[] = [];
     const points: Point[] = [];
-    let stoppedEarly = false;
+    let stoppedBecause: Path['stoppedBecause'];
     const report = (solved: Solved): boolean => {
       const index = fits.length;
       const fit = this.fitOf(solved);
@@ -197,13 +197,15 @@ export class Engine {
       if (!automatic || !grid.earlyStop || index === 0) return false;
       const explained = 1 - fit.deviance / nullDeviance;
       const gain = (fits[index - 1].deviance - fit.deviance) / nullDeviance;
-      if (!((index >= 4 && gain < 1e-5) || explained > 0.999)) return false;
-      stoppedEarly = index < lambdas.length - 1;
-      return true;
+      if (index === lambdas.length - 1) return true;
+      if (explained > 0.999) stoppedBecause = 'explained';
+      else if (index >= 4 && gain < 1e-5) stoppedBecause = 'little-gain';
+      return stoppedBecause !== undefined;
     };
     this.solve(start, lambdas, tolerance, report);
     this.guide = { lambdas: fits.map(({ lambda }) => lambda), points };
-    return { fits, nullDeviance, largestLambda: largest, stoppedEarly };
+    const told = { fits, nullDeviance, largestLambda: largest, stoppedEarly: stoppedBecause !== undefined };
+    return stoppedBecause ? { ...told, stoppedBecause } : told;
   }
 
   /** Singles along the path, and every few solved lambdas doubles for these; `report` returns true to stop. */

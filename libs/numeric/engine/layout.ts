@@ -502,9 +502,12 @@ function layOutLinear(
       mean += w * (values[i] - first);
     }
     const centre = first + mean / total;
+    // Squared as shares of the largest distance: on scales of 1e-300 or 1e300 the squares themselves would vanish or overflow.
+    let furthest = 0;
+    for (const i of order) furthest = Math.max(furthest, Math.abs(values[i] - centre));
     let variance = 0;
-    for (const i of order) variance += (weights ? weights[i] : 1) * (values[i] - centre) ** 2;
-    const scale = Math.sqrt(variance / total);
+    if (furthest > 0) for (const i of order) variance += (weights ? weights[i] : 1) * ((values[i] - centre) / furthest) ** 2;
+    const scale = furthest * Math.sqrt(variance / total);
     linearCentre[j] = centre;
     linearScale[j] = scale;
     for (let s = 0; s < order.length; s++) {

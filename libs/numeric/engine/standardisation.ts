@@ -133,12 +133,17 @@ function momentsOf(
   }
   mean = first + mean / total;
   if (!varies) return { mean: first === first ? mean : 0, deviation: 0 };
+  // Squared as shares of the largest distance: on scales of 1e-300 or 1e300 the squares themselves would vanish or overflow.
+  let furthest = 0;
+  for (let b = 0; b < bins; b++) if (weights[firstBin + b] > 0) furthest = Math.max(furthest, Math.abs(values[b] - mean));
+  if (!(furthest > 0)) return { mean, deviation: 0 };
   let variance = 0;
   for (let b = 0; b < bins; b++) {
     const w = weights[firstBin + b];
-    if (w > 0) variance += w * (values[b] - mean) * (values[b] - mean);
+    const share = (values[b] - mean) / furthest;
+    if (w > 0) variance += w * share * share;
   }
-  return { mean, deviation: Math.sqrt(variance / total) };
+  return { mean, deviation: furthest * Math.sqrt(variance / total) };
 }
 
 function withPenalty(penalty: Penalty, layout: Layout, scale: Float64Array, deviations: Float64Array) {
