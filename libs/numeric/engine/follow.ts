@@ -28,6 +28,8 @@ export interface FollowOptions {
   readonly onArrival: (lane: number, place: number, residual: number, heldOut: number) => void;
 }
 
+/** Places that one curvature serves: what it misses of a step is the guide's miss too, and taken off. */
+const REFRESH = 4;
 const MOST_PASSES = 40;
 const MOST_STALLED = 6;
 
@@ -80,7 +82,7 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
   const curvatureFor = (lane: number): Curvature => {
     const { leftOut, standardisation, place } = followers[lane];
     const state = states[lane];
-    if (state.curvature && state.curvatureAt === place) return state.curvature;
+    if (state.curvature && place < state.curvatureAt + REFRESH) return state.curvature;
     state.curvatureAt = place;
     return (state.curvature = state.room.take(along.gramsAt(place), leftOut, wholeWeight / standardisation.totalWeight));
   };

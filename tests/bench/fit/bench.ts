@@ -6,6 +6,7 @@
  *   npm run bench:fit -- --case b --json   one JSON object on standard output
  *   npm run bench:fit -- --case b --alone  without glmnet; --threads 1 without a helper
  */
+import { parseArgs } from 'node:util';
 import { CASES, type BenchCase } from './cases';
 import { hasGlmnet, timeGlmnet, type GlmnetTimes } from './glmnet';
 import { timeBootstrap, timeOurs, timeRefit, type OurTimes, type Timed } from './ours';
@@ -13,14 +14,19 @@ import { benchSample, type BenchSample } from './sample';
 import { Alone } from '@tallystone/numeric/engine/crew';
 import { crewFor, warmCrew } from '../../../server/src/threads/crew';
 
-const args = process.argv.slice(2);
-const option = (name: string): string | undefined => (args.includes(name) ? args[args.indexOf(name) + 1] : undefined);
-const json = args.includes('--json');
-const alone = args.includes('--alone');
-const chosen = CASES.filter(({ name }) => (option('--case') ?? name) === name);
+const { values: given } = parseArgs({
+  options: {
+    case: { type: 'string' },
+    json: { type: 'boolean', default: false },
+    alone: { type: 'boolean', default: false },
+    threads: { type: 'string', default: '2' },
+  },
+});
+const { json, alone } = given;
+const chosen = CASES.filter(({ name }) => (given.case ?? name) === name);
 if (chosen.length === 0)
-  throw new Error(`There is no case ${option('--case')}; there are ${CASES.map(({ name }) => name).join(', ')}.`);
-const threads = Number(option('--threads') ?? 2);
+  throw new Error(`There is no case ${given.case}; there are ${CASES.map(({ name }) => name).join(', ')}.`);
+const threads = Number(given.threads);
 const crew = (cells: number) => (threads > 1 ? crewFor(cells) : new Alone());
 if (threads > 1) {
   warmCrew();
@@ -33,6 +39,8 @@ if (!withGlmnet && !alone) console.error('R with glmnet is not installed (Debian
 const seconds = (value: number): string => (value < 1 ? `${(1000 * value).toFixed(0)} ms` : `${value.toFixed(2)} s`);
 const figure = (value: number): string => value.toExponential(1);
 let memory = 0;
+/** Long enough for the compiler to have seen the code of small cases. */
+const WARM_MS = 4000;
 const median = (values: readonly number[]): number => [...values].sort((a, b) => a - b)[Math.floor((values.length - 1) / 2)];
 const peakMemoryMB = (): number => process.resourceUsage().maxRSS / 1024;
 
@@ -83,8 +91,11 @@ function measurePath(of: BenchCase, sample: BenchSample): BenchResult {
   const ours: OurTimes[] = [];
   const theirs: GlmnetTimes[] = [];
   // The product's threads live on from fit to fit, so the compiler has seen the code before; small cases are over before it has.
-  for (let warm = 0; of.rows < 100_000 && warm < 3; warm++) timeOurs(of, sample, () => crew(of.rows * of.columns));
+  const until = performance.now() + WARM_MS;
+  while (of.rows < 100_000 && performance.now() < until) timeOurs(of, sample, () => crew(of.rows * of.columns));
   for (let round = 0; round < of.rounds; round++) {
+    // While glmnet ran, this process stood still; its first run after that is slower than those of a process at work.
+    if (of.rows < 100_000) timeOurs(of, sample, () => crew(of.rows * of.columns));
     ours.push(timeOurs(of, sample, () => crew(of.rows * of.columns)));
     if (round === of.rounds - 1) memory = peakMemoryMB();
     if (withGlmnet) theirs.push(timeGlmnet(of, sample, of.extrapolateFrom ? 'path' : 'cv'));

@@ -12,7 +12,7 @@ export interface BenchCase {
 }
 
 export const CASES: readonly BenchCase[] = [
-  { name: 'a', rows: 1000, columns: 60, mixing: 1, kind: 'path', rounds: 5 },
+  { name: 'a', rows: 1000, columns: 60, mixing: 1, kind: 'path', rounds: 9 },
   { name: 'b', rows: 30_000, columns: 25, mixing: 1, kind: 'path', rounds: 3 },
   { name: 'b-ridge', rows: 30_000, columns: 25, mixing: 0, kind: 'path', rounds: 3 },
   { name: 'b-net', rows: 30_000, columns: 25, mixing: 0.5, kind: 'path', rounds: 3 },
