@@ -245,12 +245,14 @@ export class Passes {
 
   /**
    * Weighted Gram matrices of (1, columns) per fold at a point, of a sample of the rows scaled up, by total weight of all rows.
+   * @param apart false = one matrix of all folds
    * @returns folds x (columns + 1)^2, symmetric
    */
   gram(
     point: { intercept: number; t: Float64Array },
     standardisation: Standardisation,
     sample: Sample = 'large',
+    apart = true,
   ): Float64Array[] {
     const { layout, i32, f32, f64 } = this;
     const { at, bins, columns, coded, linear, packs, folds, gramSize } = layout;
@@ -282,17 +284,14 @@ export class Passes {
     this.crew.run('gram', at.descriptionGram, units.length);
     const size = columns.length + 1;
     const total = layout.foldWeights.reduce((sum, w) => sum + w, 0);
-    const grams = Array.from({ length: folds }, () => new Float64Array(size * size));
+    const grams = Array.from({ length: apart ? folds : 1 }, () => new Float64Array(size * size));
     units.forEach(({ fold, share }, u) => {
       const from = (at.gramResults >> 3) + u * gramSize * gramSize;
-      const to = grams[fold];
-      for (let a = 0; a < size; a++) {
-        for (let b = a; b < size; b++) {
-          to[a * size + b] += (f64[from + a * gramSize + b] * share) / total;
-          to[b * size + a] = to[a * size + b];
-        }
-      }
+      const to = grams[apart ? fold : 0];
+      const part = share / total;
+      for (let a = 0; a < size; a++) for (let b = a; b < size; b++) to[a * size + b] += f64[from + a * gramSize + b] * part;
     });
+    for (const gram of grams) for (let a = 1; a < size; a++) for (let b = 0; b < a; b++) gram[a * size + b] = gram[b * size + a];
     return grams;
   }
 }

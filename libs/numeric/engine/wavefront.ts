@@ -1,4 +1,4 @@
-import { curvatureOf, withTotal, type Curvature } from './curvature';
+import { curvatureOf, type Curvature } from './curvature';
 import { copyPoint, penaltyAt, pointOf, residualAt, slopeAlong, type Lane, type Point } from './lane';
 import { LaneModel } from './lane-model';
 import { lanesOf, type Passes, type Precision } from './passes';
@@ -43,7 +43,7 @@ interface Rider extends Lane {
 /** Lambdas between two curvatures. */
 const REFRESH = 4;
 /** Steps whose exact gradients correct the curvature. */
-const SECANTS = 24;
+const SECANTS = 8;
 const MOST_PASSES = 60;
 const MOST_STALLED = 8;
 
@@ -81,7 +81,7 @@ export function solvePath(passes: Passes, start: Point | null, targets: readonly
   let furthest: Point | null = null;
   const refresh = (point: Point, place: number): void => {
     curvatureAt = place;
-    gram = withTotal(passes.gram(point, s, 'small')).total;
+    [gram] = passes.gram(point, s, 'small', false);
     secants.applyTo(gram);
     curvature = curvatureOf(gram, size);
   };
