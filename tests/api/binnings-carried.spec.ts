@@ -1,6 +1,6 @@
 import { randomUUID } from 'node:crypto';
 import type { Bins } from '@tallystone/contracts/binnings/bins';
-import type { Binning, CharacteristicDetail } from '@tallystone/contracts/binnings/schema';
+import type { Binning, BinningHistory, CharacteristicDetail } from '@tallystone/contracts/binnings/schema';
 import { addCut, groupCategories, moveCut, readBench } from '@tallystone/numeric/bench';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { applicantsWithRisk, benchOf, characteristicsOf, defineApplicants } from '../support/binned';
@@ -137,6 +137,20 @@ describe('a binning of new data that starts from an earlier one', () => {
     expect(saved.body.edits).toBe(2);
     // Undone like any other, to the bins that the new data gave by themselves.
     await world.modeller.put(path).set('If-Match', saved.headers.etag).send({ bins: detail.automatic, edits: [] }).expect(200);
+  });
+
+  it('is in the history of the whole binning, latest first, undone ones included', async () => {
+    const { body } = await world.validator.get(`/api/binnings/${second.id}/edits`).expect(200);
+    const history = body as BinningHistory;
+    expect(history.edits.map(({ column, inEffect, notCarried }) => [column, inEffect, notCarried !== null])).toEqual([
+      ['age', false, false],
+      ['home', false, true],
+      ['utilisation', true, false],
+      ['age', false, true],
+      ['age', false, false],
+    ]);
+    expect(history.edits[2]).toMatchObject({ by: 'marian', before: { kind: 'numeric' }, after: { kind: 'numeric' } });
+    await world.stranger.get(`/api/binnings/${second.id}/edits`).expect(404);
   });
 
   it('starts only from a binning of the same model that is ready', async () => {

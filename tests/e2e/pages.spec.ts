@@ -88,6 +88,7 @@ const visits: readonly Visit[] = [
   }),
   inside('/binning', { heading: 'Binning', loaded: table('Binnings of this model') }),
   inside('/binning/:binningId', { at: ({ binningId }) => `/binning/${binningId}`, heading: 'First binning', loaded: table('Characteristics') }),
+  inside('/binning/:binningId/history', { at: ({ binningId }) => `/binning/${binningId}/history`, heading: 'History of edits', loaded: table('Edits by hand') }),
   inside('/binning/:binningId/correlations', { at: ({ binningId }) => `/binning/${binningId}/correlations`, heading: 'Correlations', loaded: table('Groups and variance inflation') }),
   inside('/binning/:binningId/:characteristicId', {
     at: ({ binningId, characteristics }) => `/binning/${binningId}/${characteristics['card_utilisation']}`,

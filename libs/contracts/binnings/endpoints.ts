@@ -2,6 +2,7 @@ import { defineEndpoint } from '../endpoint';
 import { Correlations, CorrelationRun } from './correlations';
 import {
   Binning,
+  BinningHistory,
   BinningList,
   CharacteristicDetail,
   CharacteristicList,
@@ -109,4 +110,11 @@ export const calculateCorrelations = defineEndpoint({
   params: ofBinning,
   response: CorrelationRun,
   status: 202,
+});
+export const listBinningEdits = defineEndpoint({
+  method: 'GET',
+  path: `${binning}/edits`,
+  summary: 'Every manual edit of a binning, undone ones included, latest first, at most 2,000',
+  params: ofBinning,
+  response: BinningHistory,
 });

@@ -183,6 +183,12 @@ export type SetInclusion = z.input<typeof SetInclusion>;
 export const EditHistory = z.object({ edits: z.array(Edit) }).meta({ id: 'BinningEditHistory' });
 export type EditHistory = z.infer<typeof EditHistory>;
 
+/** Edits by hand of every characteristic of a binning, undone and not carried over ones included, latest first. */
+export const BinningHistory = z
+  .object({ edits: z.array(Edit.extend({ characteristicId: z.uuid(), column: z.string() })) })
+  .meta({ id: 'BinningHistory' });
+export type BinningHistory = z.infer<typeof BinningHistory>;
+
 export const ofModel = z.strictObject({ modelId: z.uuid() });
 export const ofBinning = z.strictObject({ binningId: z.uuid() });
 export const ofCharacteristic = z.strictObject({ binningId: z.uuid(), characteristicId: z.uuid() });

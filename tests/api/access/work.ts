@@ -15,6 +15,7 @@ export const binningRows: readonly AccessRow[] = [
   readsModel(`GET ${binning}/characteristics/:characteristicId/edits`),
   readsModel(`GET ${binning}/correlations`),
   developsModel(`POST ${binning}/correlations`),
+  readsModel(`GET ${binning}/edits`),
   readsModel('GET /api/sample-definitions/:definitionId/out-of-time'),
   developsModel('POST /api/sample-definitions/:definitionId/out-of-time'),
 ];

@@ -1,5 +1,6 @@
 import {
   calculateCorrelations,
+  listBinningEdits,
   listBinnings,
   listCharacteristics,
   listEdits,
@@ -14,7 +15,7 @@ import {
 } from '@tallystone/contracts/binnings/endpoints';
 import { canEditBinning, canListBinnings, canReadBinning, canStartBinning } from '../../policies/binnings';
 import { reclassCharacteristics, setInclusion } from '../../services/binnings/change-several';
-import { allEdits, presentEdit } from '../../services/binnings/edits';
+import { allEdits, allEditsOfBinning, presentEdit } from '../../services/binnings/edits';
 import { startCorrelation } from '../../services/binnings/correlate-binning';
 import { presentCorrelations } from '../../services/binnings/correlations';
 import { findBinning, findBinnings } from '../../services/binnings/find-binning';
@@ -135,6 +136,18 @@ export const binningRoutes: readonly Route[] = [
     authorise: ({ person, subject }) => canEditBinning(person, subject),
     act: async ({ context, tx, person, subject, requestId }) => ({
       runId: await startCorrelation(context, tx, { binningId: subject.id, person, modelId: subject.modelId, requestId }),
+    }),
+  }),
+  defineRoute(listBinningEdits, {
+    access: 'signed-in',
+    find: ({ context, params }) => findBinning(context.sequelize, params.binningId),
+    authorise: ({ person, subject }) => canReadBinning(person, subject),
+    act: async ({ context, subject }) => ({
+      edits: (await allEditsOfBinning(context.sequelize, subject.id)).map(({ column, ...edit }) => ({
+        ...presentEdit(edit),
+        column,
+        characteristicId: edit.characteristicId,
+      })),
     }),
   }),
 ];

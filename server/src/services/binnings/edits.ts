@@ -58,6 +58,21 @@ export function allEdits(sequelize: Sequelize, characteristicId: string, tx: Tra
   return rows(sequelize, `${select} WHERE e.characteristic_id = $1 ORDER BY e.sequence DESC LIMIT 1000`, [characteristicId], tx);
 }
 
+/** Every edit of a binning with its characteristic, undone ones included, latest first. */
+export function allEditsOfBinning(
+  sequelize: Sequelize,
+  binningId: string,
+): Promise<(StoredEdit & { readonly column: string })[]> {
+  return rows(
+    sequelize,
+    `SELECT edits.*, own.column_name AS "column" FROM (${select}) edits
+       JOIN binning_characteristics own ON own.id = edits."characteristicId"
+       JOIN binning_edits entered ON entered.id = edits.id
+      WHERE own.binning_id = $1 ORDER BY entered.sequence DESC LIMIT 2000`,
+    [binningId],
+  );
+}
+
 /** Edits by their ids, of whichever characteristic. */
 export function editsById(sequelize: Sequelize, ids: readonly string[], tx: Transaction): Promise<StoredEdit[]> {
   return ids.length === 0 ? Promise.resolve([]) : rows(sequelize, `${select} WHERE e.id = ANY($1::uuid[])`, [ids], tx);

@@ -23,6 +23,11 @@ export const binningRoutes: Routes = [
     loadComponent: () => import('./pages/correlations-page').then((m) => m.CorrelationsPage),
   },
   {
+    path: ':binningId/history',
+    title: 'History of edits',
+    loadComponent: () => import('./pages/history-page').then((m) => m.HistoryPage),
+  },
+  {
     path: ':binningId/:characteristicId',
     title: 'Bins',
     canDeactivate: [savesFirst],

@@ -5,6 +5,7 @@ import type { Correlations } from '@tallystone/contracts/binnings/correlations';
 import type { EditHistory } from '@tallystone/contracts/binnings/schema';
 import type {
   Binning,
+  BinningHistory,
   BinningList,
   BinningSummary,
   CharacteristicDetail,
@@ -23,6 +24,7 @@ import { type Tagged, idempotent, readTagged, saveTagged } from '../../../core/h
 
 export type {
   Binning,
+  BinningHistory,
   BinningList,
   BinningSummary,
   CharacteristicDetail,
@@ -47,6 +49,10 @@ export function characteristicsOf(binningId: () => string): HttpResourceRef<Char
 
 export function correlationsOf(binningId: () => string): HttpResourceRef<Correlations | undefined> {
   return httpResource<Correlations>(() => `/api/binnings/${binningId()}/correlations`);
+}
+
+export function historyOf(binningId: () => string): HttpResourceRef<BinningHistory | undefined> {
+  return httpResource<BinningHistory>(() => `/api/binnings/${binningId()}/edits`);
 }
 
 /** A confirmed definition that a binning can start from. */

@@ -5,18 +5,7 @@ import { MatSelectModule } from '@angular/material/select';
 import type { EditReason } from '@tallystone/contracts/binnings/edits';
 import type { BenchEdit } from '../bench/history';
 import { moment } from '../../../ui/numbers';
-
-/** Reasons as people read them, in the order of the list. */
-const reasons: readonly { readonly code: EditReason['code']; readonly label: string }[] = [
-  { code: 'trend known from experience', label: 'Trend known from experience' },
-  { code: 'holds better in hold-out', label: 'Holds better in hold-out' },
-  { code: 'bin too small', label: 'Bin too small' },
-  { code: 'limit used in policy', label: 'Limit used in policy' },
-  { code: 'round number', label: 'Round number' },
-  { code: 'categories alike', label: 'Categories alike' },
-  { code: 'quality of the data', label: 'Quality of the data' },
-  { code: 'other', label: 'Another reason' },
-];
+import { reasonWords, reasons } from './reason-words';
 
 export interface KnownEdit {
   readonly by: string;
@@ -113,8 +102,5 @@ export class EditList {
     this.explained.emit({ id: edit.id, reason: { code, text } });
   }
 
-  protected words({ code, text }: EditReason): string {
-    const label = reasons.find((reason) => reason.code === code)?.label ?? code;
-    return code === 'other' ? text : text ? `${label}: ${text}` : label;
-  }
+  protected readonly words = reasonWords;
 }
