@@ -149,7 +149,16 @@ describe('a binning of new data that starts from an earlier one', () => {
       ['age', false, true],
       ['age', false, false],
     ]);
-    expect(history.edits[2]).toMatchObject({ by: 'marian', before: { kind: 'numeric' }, after: { kind: 'numeric' } });
+    expect(history.edits[2]).toMatchObject({
+      by: 'marian',
+      before: { kind: 'numeric' },
+      after: { kind: 'numeric' },
+      ended: null,
+    });
+    // The edit made on this binning was undone; so was the one that was carried over, and one that was not has no end.
+    expect(history.edits.map(({ ended }) => ended?.how ?? null)).toEqual(['undone', null, null, null, 'undone']);
+    expect(history.edits[0].ended).toMatchObject({ by: 'marian', reason: null });
+    expect(Date.parse(history.edits[0].ended!.at)).toBeGreaterThanOrEqual(Date.parse(history.edits[0].at));
     await world.stranger.get(`/api/binnings/${second.id}/edits`).expect(404);
   });
 

@@ -1,5 +1,6 @@
 import { defineEndpoint } from '../endpoint';
 import { Correlations, CorrelationRun } from './correlations';
+import { CharacteristicMonths } from './months';
 import {
   Binning,
   BinningHistory,
@@ -88,6 +89,14 @@ export const splitFineClass = defineEndpoint({
   params: ofCharacteristic,
   body: NewFineEdge,
   response: CharacteristicDetail,
+});
+export const readMonths = defineEndpoint({
+  method: 'GET',
+  path: `${characteristic}/months`,
+  summary:
+    'Counts of the fine classes by month of application, for development and hold-out, and out-of-time once it has been opened',
+  params: ofCharacteristic,
+  response: CharacteristicMonths,
 });
 export const listEdits = defineEndpoint({
   method: 'GET',

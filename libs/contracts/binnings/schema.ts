@@ -108,8 +108,13 @@ const summary = {
   bins: z.int(),
   /** Of WOE along the value axis; "none" for a categorical characteristic or one bin. */
   trend: z.enum(trends),
-  /** CSI against development, over the bins; out-of-time null while covered. */
-  stability: z.object({ holdOut: finite.nullable(), outOfTime: finite.nullable() }),
+  /** CSI of each later partition against development over the bins, out-of-time null while covered; and how far WOE moves from month to month. */
+  stability: z.object({
+    holdOut: finite.nullable(),
+    outOfTime: finite.nullable(),
+    /** Standard deviation of WOE between months of development and hold-out, beyond chance; null without an application date. */
+    byMonth: finite.nullable(),
+  }),
   /** Number of the group of characteristics that say the same, from 1; null alone, or before correlations are calculated. */
   group: z.int().nullable(),
   warnings: z.array(Warning),
@@ -183,9 +188,27 @@ export type SetInclusion = z.input<typeof SetInclusion>;
 export const EditHistory = z.object({ edits: z.array(Edit) }).meta({ id: 'BinningEditHistory' });
 export type EditHistory = z.infer<typeof EditHistory>;
 
+/** How an edit came to be no longer in effect. */
+export const EditEnd = z.object({
+  how: z.enum(['undone', 'classed anew']),
+  by: z.string(),
+  at: z.string(),
+  reason: z.string().nullable(),
+});
+export type EditEnd = z.infer<typeof EditEnd>;
+
 /** Edits by hand of every characteristic of a binning, undone and not carried over ones included, latest first. */
 export const BinningHistory = z
-  .object({ edits: z.array(Edit.extend({ characteristicId: z.uuid(), column: z.string() })) })
+  .object({
+    edits: z.array(
+      Edit.extend({
+        characteristicId: z.uuid(),
+        column: z.string(),
+        /** Null while it is in effect, and for one that was never carried over. */
+        ended: EditEnd.nullable(),
+      }),
+    ),
+  })
   .meta({ id: 'BinningHistory' });
 export type BinningHistory = z.infer<typeof BinningHistory>;
 
@@ -198,3 +221,6 @@ export const ClassingResult = z.object({ binningId: z.uuid(), characteristics: z
 
 /** Result of the run "correlate characteristics" (Run.result). */
 export const CorrelationResult = z.object({ binningId: z.uuid(), characteristics: z.int() });
+
+/** Result of the run "complete a binning" (Run.result): characteristics that lacked a figure. */
+export const CompletionResult = z.object({ binningId: z.uuid(), characteristics: z.int() });

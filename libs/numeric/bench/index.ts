@@ -6,6 +6,7 @@ export * from './trend';
 export * from './stability';
 export * from './reading';
 export * from './interval';
+export * from './months';
 export * from './warnings';
 export * from './round';
 export * from './numeric-edits';

@@ -1,6 +1,15 @@
 import type { AskedConstraints, Bins, Constraints, Fine, SlotCounts } from '@tallystone/contracts/binnings/bins';
+import type { MonthlyCounts } from '@tallystone/contracts/binnings/months';
 import type { Warning } from '@tallystone/contracts/binnings/schema';
-import { type BenchReading, benchWarnings, classCount, readBench, readingInterval, readingOfIv } from '@tallystone/numeric/bench';
+import {
+  type BenchReading,
+  benchWarnings,
+  classCount,
+  monthlyDrift,
+  readBench,
+  readingInterval,
+  readingOfIv,
+} from '@tallystone/numeric/bench';
 import { classCategories } from '@tallystone/numeric/binning/categories';
 import { chooseTrend } from '@tallystone/numeric/binning/choose-trend';
 import { classNumeric } from '@tallystone/numeric/binning/classing';
@@ -69,6 +78,8 @@ export interface Summarised {
     bins: number;
     trend: ReturnType<typeof readBench>['trend'];
     csiHoldOut: number | null;
+    /** Standard deviation of WOE between months beyond chance; null where the sample has no months. */
+    monthlyDrift?: number | null;
     warnings: Warning[];
   };
   /** Those that out-of-time figures give: kept apart until they are opened. */
@@ -76,8 +87,16 @@ export interface Summarised {
   readonly outOfTimeCsi: number | null;
 }
 
+/** All that is counted of a characteristic. Out-of-time lies apart; months are those of development and hold-out. */
+export interface Counted {
+  readonly fine: Fine;
+  readonly outOfTime: SlotCounts;
+  /** Null where the sample has none; undefined where they have not been counted yet. */
+  readonly months: MonthlyCounts | null | undefined;
+}
+
 /** What the list shows about a characteristic: the browser's own calculation, made on the server. */
-export function summarise(fine: Fine, outOfTime: SlotCounts, bins: Bins, constraints: Constraints): Summarised {
+export function summarise({ fine, outOfTime, months }: Counted, bins: Bins, constraints: Constraints): Summarised {
   const reading = readBench({ ...fine, outOfTime }, bins);
   const warnings = benchWarnings(reading, constraints).map((warning) => ({ ...warning, bins: [...warning.bins] }));
   return {
@@ -90,6 +109,7 @@ export function summarise(fine: Fine, outOfTime: SlotCounts, bins: Bins, constra
       bins: reading.bins.length,
       trend: reading.trend,
       csiHoldOut: reading.stability.holdOut,
+      ...(months === undefined ? {} : { monthlyDrift: months && (monthlyDrift(fine, bins, months)?.deviation ?? null) }),
       warnings: warnings.filter(({ code }) => !ofOutOfTime.has(code)),
     },
     outOfTimeWarnings: warnings.filter(({ code }) => ofOutOfTime.has(code)),

@@ -1,4 +1,5 @@
 import type { AskedConstraints, Bins, Constraints, Fine, SlotCounts } from '@tallystone/contracts/binnings/bins';
+import type { MonthlyCounts } from '@tallystone/contracts/binnings/months';
 import type { BinnedCharacteristic, DataReading } from '@tallystone/contracts/specification/types';
 import { type CarriedStep, type EarlierEdit, carriedEdges, carryEdits } from '@tallystone/numeric/bench';
 import { ReplayError } from '../replay/problems';
@@ -6,9 +7,11 @@ import type { SourceColumn } from '../replay/source';
 import type { Task } from '../threads/task';
 import { type Summarised, classFine, summarise } from './automatic';
 import { automaticClassing, withBins } from './definition';
+import { type CountedMonths, type RowMonths, countMonths } from './months';
 import {
   type CountedRows,
   type DefinedCharacteristic,
+  type FineClassing,
   TooManyCategories,
   fineClasses,
   fineEntry,
@@ -27,6 +30,8 @@ export interface ClassColumn {
   readonly constraints: AskedConstraints;
   /** Edits of an earlier binning, oldest first, to be made again where they make sense. */
   readonly earlier?: readonly EarlierEdit[];
+  /** When each row applied; null where the sample does not say. */
+  readonly months: RowMonths | null;
 }
 
 export interface ClassedColumn extends Summarised {
@@ -35,6 +40,7 @@ export interface ClassedColumn extends Summarised {
   readonly constraints: Constraints;
   readonly fine: Fine;
   readonly outOfTime: SlotCounts;
+  readonly months: CountedMonths | null;
   /** What became of each earlier edit. */
   readonly carried: readonly CarriedStep[];
 }
@@ -52,6 +58,7 @@ export const classColumn: Task<ClassColumn, ClassedColumn | { readonly unusable:
   counted,
   constraints: asked,
   earlier = [],
+  months: rowMonths,
 }) => {
   try {
     const source = sourceOfOne(defined, column, counted.rows);
@@ -64,6 +71,7 @@ export const classColumn: Task<ClassColumn, ClassedColumn | { readonly unusable:
     const { fine, outOfTime } = more.length > 0 ? splitFineClasses(defined, source, data, counted, counts.fine, more) : counts;
     const { bins, steps } = carryEdits(fine, automatic, earlier);
     const current = bins as Bins;
+    const months = rowMonths && countMonths(defined, source, data, counted, fine, rowMonths);
     const classing = steps.some(({ kept }) => kept) ? ({ made: 'by hand' } as const) : automaticClassing(constraints);
     const definition = withBins(fineEntry(defined, fine.edges, fine.categories), current, classing);
     return {
@@ -72,8 +80,9 @@ export const classColumn: Task<ClassColumn, ClassedColumn | { readonly unusable:
       constraints,
       fine,
       outOfTime,
+      months,
       carried: steps,
-      ...summarise(fine, outOfTime, current, constraints),
+      ...summarise({ fine, outOfTime, months: months?.counts ?? null }, current, constraints),
     };
   } catch (error) {
     if (error instanceof TooManyCategories || error instanceof ReplayError) return { unusable: error.message };
@@ -86,20 +95,36 @@ export interface SplitColumn extends Omit<ClassColumn, 'constraints'> {
   readonly edge: number;
 }
 
-/** Counts a column's fine classes anew with one more edge. */
-export const splitColumn: Task<SplitColumn, { readonly fine: Fine; readonly outOfTime: SlotCounts }> = ({
+/** Counts a column's fine classes anew with one more edge, by month too. */
+export const splitColumn: Task<SplitColumn, FineClassing & { readonly months: CountedMonths | null }> = ({
   defined,
   column,
   data,
   counted,
   fine,
   edge,
-}) => splitFineClasses(defined, sourceOfOne(defined, column, counted.rows), data, counted, fine, [edge]);
+  months,
+}) => {
+  const source = sourceOfOne(defined, column, counted.rows);
+  const split = splitFineClasses(defined, source, data, counted, fine, [edge]);
+  return { ...split, months: months && countMonths(defined, source, data, counted, split.fine, months) };
+};
+
+/** Counts the fine classes that a column has by month. */
+export const countColumnMonths: Task<Omit<SplitColumn, 'edge' | 'months'> & { readonly months: RowMonths }, CountedMonths> = ({
+  defined,
+  column,
+  data,
+  counted,
+  fine,
+  months,
+}) => countMonths(defined, sourceOfOne(defined, column, counted.rows), data, counted, fine, months);
 
 export interface ReclassFine {
   readonly characteristics: readonly {
     readonly fine: Fine;
     readonly outOfTime: SlotCounts;
+    readonly months: MonthlyCounts | null | undefined;
     readonly constraints: AskedConstraints;
   }[];
 }
@@ -109,9 +134,9 @@ export const reclassFine: Task<ReclassFine, ({ readonly automatic: Bins; readonl
   { characteristics },
   { cancelled, progress },
 ) =>
-  characteristics.map(({ fine, outOfTime, constraints: asked }, index) => {
+  characteristics.map(({ fine, outOfTime, months, constraints: asked }, index) => {
     if (cancelled()) throw new Error('Cancelled');
     progress('Classing', index / characteristics.length);
     const { bins: automatic, constraints } = classFine(fine, asked);
-    return { automatic, constraints, ...summarise(fine, outOfTime, automatic, constraints) };
+    return { automatic, constraints, ...summarise({ fine, outOfTime, months }, automatic, constraints) };
   });

@@ -117,7 +117,7 @@ function countSlots(
   const count = (): SlotCounts => ({ rows: zeros(slots), goods: zeros(slots), bads: zeros(slots) });
   const [development, holdOut, outOfTime] = [count(), count(), count()];
   if (column) {
-    const codes = codesOfTexts(defined, entry, column, data, counted, source);
+    const slotOf = slotsOfTexts(defined, entry, column, data, counted, source, slots);
     const tally = tallyTexts(column, counted);
     for (const [part, counts] of [
       [DEVELOPMENT, development],
@@ -125,8 +125,7 @@ function countSlots(
       [OUT_OF_TIME, outOfTime],
     ] as const) {
       for (let text = 0; text < column.texts.length; text++) {
-        // A category that no class has: development has not seen it. The last slot is theirs.
-        const slot = codes[text] === NO_BIN ? slots - 1 : codes[text];
+        const slot = slotOf[text];
         const at = text * groups + 2 * (part - 1);
         counts.rows[slot] += tally.rows[at] + tally.rows[at + 1];
         counts.goods[slot] += tally.weights[at + 1];
@@ -164,6 +163,19 @@ function tallyTexts(column: TextColumn, { partition, outcome, weights }: Counted
   return { rows, weights: sums };
 }
 
+/** The slot of each text. A category that no class has is one that development has not seen: the last slot is theirs. */
+export function slotsOfTexts(
+  defined: DefinedCharacteristic,
+  entry: BinnedCharacteristic,
+  column: TextColumn,
+  data: DataReading,
+  counted: CountedRows,
+  source: ColumnSource,
+  slots: number,
+): Uint8Array {
+  return codesOfTexts(defined, entry, column, data, counted, source).map((code) => (code === NO_BIN ? slots - 1 : code));
+}
+
 /**
  * The code that the chain gives each text, from the chain itself: rows of equal text have equal codes, so a sample with one row for each text
  * says all of them. Texts of rows that are out alone are not judged.
@@ -192,7 +204,7 @@ function codesOfTexts(
   }
 }
 
-function textColumn(defined: DefinedCharacteristic, source: ColumnSource, counted: CountedRows): TextColumn | null {
+export function textColumn(defined: DefinedCharacteristic, source: ColumnSource, counted: CountedRows): TextColumn | null {
   const column = source.column(defined.column);
   return column ? textsOf(column, counted.rows) : null;
 }

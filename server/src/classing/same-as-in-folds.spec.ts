@@ -64,6 +64,7 @@ describe.each([
         data: { ...data, missing: [...data.missing] },
         counted,
         constraints: asked,
+        months: null,
       },
       control,
     );
@@ -80,6 +81,7 @@ describe.each([
         data: { ...data, missing: [...data.missing] },
         counted,
         constraints: asked,
+        months: null,
       },
       control,
     );

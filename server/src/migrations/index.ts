@@ -11,6 +11,7 @@ import { outOfTime } from './0200-out-of-time';
 import { binnings } from './0201-binnings';
 import { correlations } from './0202-correlations';
 import { carriedEdits } from './0203-carried-edits';
+import { binningMonths } from './0210-binning-months';
 import { fits } from './0300-fits';
 import { scorecards } from './0400-scorecards';
 import { versions } from './0401-versions';
@@ -20,4 +21,4 @@ import type { Migration } from './migration';
  * Every migration in order. A static list, because a glob finds nothing in the bundle. Numbers leave room by entity: 00xx the base,
  * 01xx models and samples, 02xx binnings, 03xx fits, 04xx scorecards and versions, 05xx documents; the order of this list decides.
  */
-export const migrations: readonly Migration[] = [people, sessions, record, runs, queue, mail, models, samples, outOfTime, binnings, correlations, carriedEdits, fits, scorecards, versions, runParts];
+export const migrations: readonly Migration[] = [people, sessions, record, runs, queue, mail, models, samples, outOfTime, binnings, correlations, carriedEdits, binningMonths, fits, scorecards, versions, runParts];

@@ -39,6 +39,8 @@ export interface StoredSummary {
   trend: (typeof trends)[number];
   /** CSI of hold-out against development. */
   csiHoldOut: number | null;
+  /** Standard deviation of WOE between months of development and hold-out, beyond chance; absent until they have been counted. */
+  monthlyDrift?: number | null;
   warnings: Warning[];
 }
 

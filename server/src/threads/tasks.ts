@@ -1,4 +1,4 @@
-import { classColumn, reclassFine, splitColumn } from '../classing/class-column';
+import { classColumn, countColumnMonths, reclassFine, splitColumn } from '../classing/class-column';
 import { correlateCodes, inflate } from '../classing/correlate';
 import { buildScorecard } from './build-scorecard';
 import { codeSegment } from './code-segment';
@@ -18,6 +18,7 @@ export const tasks = {
   'binning.class': classColumn,
   'binning.correlate': correlateCodes,
   'binning.inflate': inflate,
+  'binning.months': countColumnMonths,
   'binning.reclass': reclassFine,
   'binning.split': splitColumn,
   'fit.compare': compareFits,

@@ -12,6 +12,7 @@ export const binningRows: readonly AccessRow[] = [
   readsModel(`GET ${binning}/characteristics/:characteristicId`),
   developsModel(`PUT ${binning}/characteristics/:characteristicId`),
   developsModel(`POST ${binning}/characteristics/:characteristicId/fine-edges`),
+  readsModel(`GET ${binning}/characteristics/:characteristicId/months`),
   readsModel(`GET ${binning}/characteristics/:characteristicId/edits`),
   readsModel(`GET ${binning}/correlations`),
   developsModel(`POST ${binning}/correlations`),

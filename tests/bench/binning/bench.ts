@@ -7,7 +7,9 @@
  *   ... --trend cross-validated                                the trend of each characteristic chosen by cross-validation
  */
 import { AskedConstraints } from '@tallystone/contracts/binnings/bins';
+import { Generator } from '@tallystone/numeric/random/generator';
 import { Sequelize } from 'sequelize';
+import type { RowMonths } from '../../../server/src/classing/months';
 import { classCharacteristics } from '../../../server/src/services/binnings/class-characteristics';
 import { stopThreads, runInThread, threadCount } from '../../../server/src/threads/run-in-thread';
 import { createTestDatabase } from '../../support/database';
@@ -35,7 +37,13 @@ const sequelize = new Sequelize(database.appUrl, { logging: false, dialect: 'pos
 try {
   say(`storing ${rows} rows of ${count} columns`);
   const sample = await storeSample(sequelize, database.ownerUrl, rows, count);
-  const asked = { ...sample, data: { ...data, missing: [...data.missing] }, constraints, earlier: new Map() };
+  const asked = {
+    ...sample,
+    data: { ...data, missing: [...data.missing] },
+    constraints,
+    months: monthsAtRandom(rows),
+    earlier: new Map(),
+  };
   const before = process.cpuUsage();
   const began = performance.now();
   const { classed, unusable } = await classCharacteristics(sequelize, asked, {
@@ -48,9 +56,11 @@ try {
   if (classed.length !== count) throw new Error(`${unusable.length} columns could not be classed: ${unusable[0]?.reason}`);
   const milliseconds: number[] = [];
   for (let turn = 0; turn < 60; turn++) {
-    const { fine, outOfTime } = classed[turn % classed.length];
+    const { fine, outOfTime, months } = classed[turn % classed.length];
     const from = performance.now();
-    await runInThread('binning.reclass', { characteristics: [{ fine, outOfTime, constraints }] });
+    await runInThread('binning.reclass', {
+      characteristics: [{ fine, outOfTime, months: months && months.counts, constraints }],
+    });
     milliseconds.push(performance.now() - from);
   }
   milliseconds.sort((a, b) => a - b);
@@ -69,4 +79,16 @@ try {
   await stopThreads();
   await sequelize.close();
   await database.drop();
+}
+
+/** Three years of applications. */
+function monthsAtRandom(count: number): RowMonths {
+  const random = new Generator(3);
+  const names = Array.from(
+    { length: 36 },
+    (_, month) => `20${22 + Math.floor(month / 12)}-${String((month % 12) + 1).padStart(2, '0')}`,
+  );
+  const of = new Uint16Array(new SharedArrayBuffer(2 * count));
+  for (let row = 0; row < count; row++) of[row] = Math.floor(random.uniform() * names.length);
+  return { of, names };
 }

@@ -1,4 +1,4 @@
-import { ClassingResult, CorrelationResult } from '@tallystone/contracts/binnings/schema';
+import { ClassingResult, CompletionResult, CorrelationResult } from '@tallystone/contracts/binnings/schema';
 import { z } from 'zod';
 import { defineJob } from './job';
 
@@ -16,4 +16,12 @@ export const correlateBinningJob = defineJob({
   queue: 'long',
   payload: z.strictObject({ binningId: z.uuid() }),
   result: CorrelationResult,
+});
+
+/** Calculates what a binning lacks that was classed before some of its figures were introduced. */
+export const completeBinningJob = defineJob({
+  kind: 'binning.complete',
+  queue: 'long',
+  payload: z.strictObject({ binningId: z.uuid() }),
+  result: CompletionResult,
 });

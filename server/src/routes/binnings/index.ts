@@ -7,6 +7,7 @@ import {
   readBinning,
   readCharacteristic,
   readCorrelations,
+  readMonths,
   reclassCharacteristics as reclassEndpoint,
   saveCharacteristic,
   setInclusion as setInclusionEndpoint,
@@ -15,12 +16,14 @@ import {
 } from '@tallystone/contracts/binnings/endpoints';
 import { canEditBinning, canListBinnings, canReadBinning, canStartBinning } from '../../policies/binnings';
 import { reclassCharacteristics, setInclusion } from '../../services/binnings/change-several';
-import { allEdits, allEditsOfBinning, presentEdit } from '../../services/binnings/edits';
+import { allEdits, allEditsOfBinning, presentEdit, presentHistoric } from '../../services/binnings/edits';
 import { startCorrelation } from '../../services/binnings/correlate-binning';
 import { presentCorrelations } from '../../services/binnings/correlations';
 import { findBinning, findBinnings } from '../../services/binnings/find-binning';
 import { findOnBench } from '../../services/binnings/find-characteristic';
 import { presentBinning, presentBinningSummary, presentCharacteristics, presentDetail } from '../../services/binnings/present';
+import { completeIfOld } from '../../services/binnings/complete-binning';
+import { presentMonths } from '../../services/binnings/months';
 import { saveBins } from '../../services/binnings/save-bins';
 import { splitFineClass } from '../../services/binnings/split-fine-class';
 import { startBinning } from '../../services/binnings/start-binning';
@@ -60,7 +63,12 @@ export const binningRoutes: readonly Route[] = [
     access: 'signed-in',
     find: ({ context, params }) => findBinning(context.sequelize, params.binningId),
     authorise: ({ person, subject }) => canReadBinning(person, subject),
-    act: ({ context, subject }) => presentCharacteristics(context.sequelize, subject),
+    act: async ({ context, person, subject, requestId }) => {
+      if (subject.state === 'ready') {
+        await completeIfOld(context, { binningId: subject.id, modelId: subject.modelId, person, requestId });
+      }
+      return presentCharacteristics(context.sequelize, subject);
+    },
   }),
   defineRoute(reclassEndpoint, {
     access: 'signed-in',
@@ -115,6 +123,12 @@ export const binningRoutes: readonly Route[] = [
       return presentDetail(context.sequelize, person, now);
     },
   }),
+  defineRoute(readMonths, {
+    access: 'signed-in',
+    find: ({ context, params }) => findOnBench(context.sequelize, params.binningId, params.characteristicId),
+    authorise: ({ person, subject }) => canReadBinning(person, subject.binning),
+    act: ({ context, subject }) => presentMonths(context.sequelize, subject),
+  }),
   defineRoute(listEdits, {
     access: 'signed-in',
     find: ({ context, params }) => findOnBench(context.sequelize, params.binningId, params.characteristicId),
@@ -143,11 +157,7 @@ export const binningRoutes: readonly Route[] = [
     find: ({ context, params }) => findBinning(context.sequelize, params.binningId),
     authorise: ({ person, subject }) => canReadBinning(person, subject),
     act: async ({ context, subject }) => ({
-      edits: (await allEditsOfBinning(context.sequelize, subject.id)).map(({ column, ...edit }) => ({
-        ...presentEdit(edit),
-        column,
-        characteristicId: edit.characteristicId,
-      })),
+      edits: (await allEditsOfBinning(context.sequelize, subject.id)).map(presentHistoric),
     }),
   }),
 ];

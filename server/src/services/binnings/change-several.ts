@@ -9,6 +9,7 @@ import { runInThread } from '../../threads/run-in-thread';
 import { appendRecord } from '../record/append';
 import type { FoundBinning } from './find-binning';
 import { type FoundCharacteristic, lockCharacteristics } from './find-characteristic';
+import { storedMonths } from './months';
 
 interface Chosen {
   readonly id: string;
@@ -67,8 +68,15 @@ export async function reclassCharacteristics(
     );
   }
   const asking = found.map((one) => ({ ...asked.constraints, fineClasses: one.constraints.fineClasses }));
+  const months: Awaited<ReturnType<typeof storedMonths>>[] = [];
+  for (const { id } of found) months.push(await storedMonths(sequelize, id, tx));
   const classed = await runInThread('binning.reclass', {
-    characteristics: found.map(({ fine, outOfTime }, index) => ({ fine, outOfTime, constraints: asking[index] })),
+    characteristics: found.map(({ fine, outOfTime }, index) => ({
+      fine,
+      outOfTime,
+      months: months[index] && months[index].counts,
+      constraints: asking[index],
+    })),
   });
   for (const [index, one] of found.entries()) {
     const { automatic, constraints, summary, outOfTimeWarnings, outOfTimeCsi } = classed[index];

@@ -1,5 +1,5 @@
 import { randomUUID } from 'node:crypto';
-import type { Transaction } from 'sequelize';
+import type { Sequelize, Transaction } from 'sequelize';
 import type { RunContext } from '../../jobs/handler';
 import { Binning, BinningCharacteristic } from '../../models/binning';
 import { actorOf } from '../people/actor-of';
@@ -8,6 +8,7 @@ import { findDefinition, loadPrepared } from '../samples/definitions';
 import { splitColumns } from './barred';
 import { type EarlierCharacteristic, readEarlier, storeCarried } from './carry-over';
 import { classCharacteristics } from './class-characteristics';
+import { loadRowMonths, storeMonths } from './months';
 
 type Classed = Awaited<ReturnType<typeof classCharacteristics>>;
 export interface ClassedBinning extends Classed {
@@ -37,6 +38,7 @@ export async function classBinning(
       counted,
       columns: taken,
       constraints: binning.constraints,
+      months: await loadRowMonths(sequelize, definition.sampleId, definition.content),
       earlier,
     },
     { signal, onDone: (done) => progress('Classing characteristics', done / taken.length) },
@@ -46,6 +48,7 @@ export async function classBinning(
 
 /** Writes the bins, once, in the transaction that ends the run. */
 export async function storeClassing(
+  sequelize: Sequelize,
   tx: Transaction,
   run: { readonly personId: string },
   { binning, earlier, classed, unusable }: ClassedBinning,
@@ -93,6 +96,7 @@ export async function storeClassing(
     ),
     { transaction: tx },
   );
+  for (const { id, months } of entered) await storeMonths(sequelize, tx, id, months);
   await Binning.update(
     { readyAt: new Date(), barred: [...binning.barred, ...unusable] },
     { where: { id: binningId }, transaction: tx },

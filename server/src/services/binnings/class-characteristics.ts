@@ -4,6 +4,7 @@ import type { EarlierEdit } from '@tallystone/numeric/bench';
 import type { Sequelize } from 'sequelize';
 import type { ClassedColumn } from '../../classing/class-column';
 import type { CountedRows } from '../../classing/fine-classes';
+import type { RowMonths } from '../../classing/months';
 import { openSample } from '../../storage/columnStore';
 import { runInThread, threadCount } from '../../threads/run-in-thread';
 import type { Barred } from './barred';
@@ -55,6 +56,7 @@ export async function classCharacteristics(
     counted: CountedRows;
     columns: readonly ColumnToClass[];
     constraints: AskedConstraints;
+    months: RowMonths | null;
     /** By column. */
     earlier: ReadonlyMap<string, Earlier>;
   },
@@ -81,6 +83,7 @@ export async function classCharacteristics(
           counted,
           constraints: asked.earlier.get(defined.column)?.constraints ?? asked.constraints,
           earlier: asked.earlier.get(defined.column)?.edits ?? [],
+          months: asked.months,
         },
         { signal: control.signal },
       );

@@ -1,4 +1,5 @@
 import type { Edit } from '@tallystone/contracts/binnings/edits';
+import type { BinningHistory, EditEnd } from '@tallystone/contracts/binnings/schema';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
 
@@ -58,20 +59,58 @@ export function allEdits(sequelize: Sequelize, characteristicId: string, tx: Tra
   return rows(sequelize, `${select} WHERE e.characteristic_id = $1 ORDER BY e.sequence DESC LIMIT 1000`, [characteristicId], tx);
 }
 
-/** Every edit of a binning with its characteristic, undone ones included, latest first. */
-export function allEditsOfBinning(
-  sequelize: Sequelize,
-  binningId: string,
-): Promise<(StoredEdit & { readonly column: string })[]> {
-  return rows(
+/** An edit in the history of a whole binning. */
+export interface HistoricEdit extends StoredEdit {
+  readonly column: string;
+  readonly ended: (Omit<EditEnd, 'at'> & { readonly at: Date }) | null;
+}
+
+/**
+ * Every edit of a binning with its characteristic, undone ones included, latest first, at most 2,000. Who ended one, and why, is what the record says
+ * first after the edit was last made: it was undone, or its characteristic was classed anew.
+ */
+export async function allEditsOfBinning(sequelize: Sequelize, binningId: string): Promise<HistoricEdit[]> {
+  const found = await rows<
+    StoredEdit & { column: string; how: string | null; endedBy: string; endedAt: Date; endedWhy: string | null }
+  >(
     sequelize,
-    `SELECT edits.*, own.column_name AS "column" FROM (${select}) edits
+    `SELECT edits.*, own.column_name AS "column", ended.action AS how, ended.actor_name AS "endedBy", ended.at AS "endedAt", ended.reason AS "endedWhy"
+       FROM (${select}) edits
        JOIN binning_characteristics own ON own.id = edits."characteristicId"
        JOIN binning_edits entered ON entered.id = edits.id
+       LEFT JOIN LATERAL (
+         SELECT r.action, r.actor_name, r.at, r.reason FROM record r
+          WHERE r.entity = 'binning-characteristic' AND r.entity_id = own.id::text
+            AND (r.action = 'binning.reclassed' OR (r.action = 'binning.edit-undone' AND r.detail ->> 'edit' = edits.id::text))
+            AND r.sequence > (
+              SELECT max(m.sequence) FROM record m
+               WHERE m.entity = 'binning-characteristic' AND m.entity_id = own.id::text AND m.detail ->> 'edit' = edits.id::text
+                 AND m.action IN ('binning.edited', 'binning.edit-redone', 'binning.edit-carried'))
+          ORDER BY r.sequence LIMIT 1
+       ) ended ON edits.place IS NULL
       WHERE own.binning_id = $1 ORDER BY entered.sequence DESC LIMIT 2000`,
     [binningId],
   );
+  return found.map(({ how, endedBy, endedAt, endedWhy, ...edit }) => ({
+    ...edit,
+    ended:
+      how === null
+        ? null
+        : {
+            how: how === 'binning.reclassed' ? ('classed anew' as const) : ('undone' as const),
+            by: endedBy,
+            at: endedAt,
+            reason: endedWhy,
+          },
+  }));
 }
+
+export const presentHistoric = ({ column, ended, ...edit }: HistoricEdit): BinningHistory['edits'][number] => ({
+  ...presentEdit(edit),
+  column,
+  characteristicId: edit.characteristicId,
+  ended: ended && { ...ended, at: ended.at.toISOString() },
+});
 
 /** Edits by their ids, of whichever characteristic. */
 export function editsById(sequelize: Sequelize, ids: readonly string[], tx: Transaction): Promise<StoredEdit[]> {

@@ -45,7 +45,7 @@ export async function presentBinning(
 
 function presentSummary(one: ListedCharacteristic, outOfTime: OutOfTimeState, group: number | null): CharacteristicSummary {
   const { summary, outOfTimeWarnings, outOfTimeCsi, ...rest } = one;
-  const { csiHoldOut, informationValueLower, informationValueUpper, ...figures } = summary;
+  const { csiHoldOut, monthlyDrift, informationValueLower, informationValueUpper, ...figures } = summary;
   const opened = outOfTime === 'opened';
   return {
     id: rest.id,
@@ -55,10 +55,10 @@ function presentSummary(one: ListedCharacteristic, outOfTime: OutOfTimeState, gr
     included: rest.included,
     leftOutReason: rest.leftOutReason,
     ...figures,
-    // Kept since the first edit after they were introduced: null for bins that are older.
+    // Bins that are older than these have them once the run that completes them is through.
     informationValueLower: informationValueLower ?? null,
     informationValueUpper: informationValueUpper ?? null,
-    stability: { holdOut: csiHoldOut ?? null, outOfTime: opened ? outOfTimeCsi : null },
+    stability: { holdOut: csiHoldOut ?? null, outOfTime: opened ? outOfTimeCsi : null, byMonth: monthlyDrift ?? null },
     group,
     warnings: opened ? [...summary.warnings, ...outOfTimeWarnings] : summary.warnings,
     edits: rest.edits,

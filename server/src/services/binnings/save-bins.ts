@@ -10,6 +10,7 @@ import { appendRecord } from '../record/append';
 import { checkBins, checkEdits, sameBins } from './check-bins';
 import { type StoredEdit, editsById, editsInEffect } from './edits';
 import type { OnBench } from './find-characteristic';
+import { storedMonths } from './months';
 
 /**
  * Saves the bench of one characteristic: its bins and the edits that made them. The row is locked and its revision has been matched. Everything
@@ -51,11 +52,12 @@ export async function saveBins(
     before.length !== sent.edits.length ||
     before.some((edit, place) => edit.id !== sent.edits[place].id)
   ) {
+    const months = await storedMonths(sequelize, characteristic.id, tx);
     const classing = sent.edits.length > 0 ? ({ made: 'by hand' } as const) : automaticClassing(constraints);
     await BinningCharacteristic.update(
       {
         definition: withBins(characteristic.definition, sent.bins, classing),
-        ...summarise(fine, outOfTime, sent.bins, constraints),
+        ...summarise({ fine, outOfTime, months: months && months.counts }, sent.bins, constraints),
         revision: characteristic.revision + 1,
         changedAt: new Date(),
         changedBy: person.id,

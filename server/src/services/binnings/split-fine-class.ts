@@ -8,6 +8,7 @@ import { runInThread } from '../../threads/run-in-thread';
 import { findDefinition, loadPrepared } from '../samples/definitions';
 import { shared } from './class-characteristics';
 import { type OnBench, findOnBench } from './find-characteristic';
+import { loadRowMonths, storeMonths } from './months';
 
 const mostEdges = 199;
 
@@ -32,6 +33,7 @@ export async function splitFineClass(sequelize: Sequelize, found: OnBench, edge:
   const column = source.column(characteristic.column);
   if (!column) throw new Error(`The sample has no column ${characteristic.column}`);
   const counted = shared(await loadPrepared(sequelize, definition.id));
+  const months = await loadRowMonths(sequelize, definition.sampleId, definition.content);
   let { fine } = characteristic;
   // Somebody else may split the same characteristic meanwhile: then the count is made again on what they left.
   while (!fine.edges.includes(edge)) {
@@ -44,6 +46,7 @@ export async function splitFineClass(sequelize: Sequelize, found: OnBench, edge:
       counted,
       fine,
       edge,
+      months,
     });
     const expected = fine.edges.length;
     const left = await inTransaction(sequelize, async (tx) => {
@@ -55,6 +58,7 @@ export async function splitFineClass(sequelize: Sequelize, found: OnBench, edge:
         { fine: split.fine, outOfTime: split.outOfTime },
         { where: { id: characteristic.id }, transaction: tx },
       );
+      await storeMonths(sequelize, tx, characteristic.id, split.months);
       return split.fine;
     });
     fine = left;

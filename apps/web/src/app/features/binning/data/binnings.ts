@@ -2,6 +2,7 @@ import { HttpClient, type HttpResourceRef, httpResource } from '@angular/common/
 import { Injectable, inject } from '@angular/core';
 import type { AskedConstraints } from '@tallystone/contracts/binnings/bins';
 import type { Correlations } from '@tallystone/contracts/binnings/correlations';
+import type { CharacteristicMonths } from '@tallystone/contracts/binnings/months';
 import type { EditHistory } from '@tallystone/contracts/binnings/schema';
 import type {
   Binning,
@@ -53,6 +54,13 @@ export function correlationsOf(binningId: () => string): HttpResourceRef<Correla
 
 export function historyOf(binningId: () => string): HttpResourceRef<BinningHistory | undefined> {
   return httpResource<BinningHistory>(() => `/api/binnings/${binningId()}/edits`);
+}
+
+export function monthsOf(
+  binningId: () => string,
+  characteristicId: () => string,
+): HttpResourceRef<CharacteristicMonths | undefined> {
+  return httpResource<CharacteristicMonths>(() => `/api/binnings/${binningId()}/characteristics/${characteristicId()}/months`);
 }
 
 /** A confirmed definition that a binning can start from. */

@@ -44,6 +44,7 @@ import { currentBins } from '../bench/history';
 import { Bench } from '../data/bench';
 import { Binnings, binningOf, characteristicsOf } from '../data/binnings';
 import { benchFinding, trendWords } from '../ui/bench-finding';
+import { BenchMonths } from './bench-months';
 import { BinsFigure } from '../ui/bins-figure';
 import { EditList, type KnownEdit } from '../ui/edit-list';
 import { type AxisMode, layOut } from '../ui/geometry';
@@ -64,6 +65,7 @@ import type { StaleAnswer, StaleQuestion } from '../ui/stale-dialog';
     MatIconModule,
     MatInputModule,
     MatSelectModule,
+    BenchMonths,
     BinsFigure,
     DecisionNotice,
     EditList,

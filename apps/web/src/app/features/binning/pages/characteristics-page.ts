@@ -68,6 +68,8 @@ export class CharacteristicsPage {
   protected readonly part = computed(() => asPart(this.show()));
   protected readonly mayEdit = computed(() => this.binning.hasValue() && this.binning.value().abilities.includes('edit'));
   private readonly opened = computed(() => this.binning.hasValue() && this.binning.value().outOfTime === 'opened');
+  /** Without an application date nothing can be told by month. */
+  private readonly dated = computed(() => (this.all() ?? []).some(({ stability }) => stability.byMonth !== null));
   protected readonly mayOpen = computed(() => this.current.can('develop'));
   protected readonly run = this.runs.run(() => (this.binning.hasValue() ? this.binning.value().runId : null));
   protected readonly all = computed(() => (this.list.hasValue() ? this.list.value().characteristics : null));
@@ -133,6 +135,19 @@ export class CharacteristicsPage {
           },
         ]
       : []),
+    ...(this.dated()
+      ? [
+          {
+            key: 'by-month',
+            label: 'WOE moves',
+            unit: 'by month',
+            kind: 'number' as const,
+            decimals: 2,
+            value: (row: CharacteristicSummary) => row.stability.byMonth,
+            sortable: true,
+          },
+        ]
+      : []),
     { key: 'group', label: 'Group', unit: 'says the same', kind: 'count', value: (row) => row.group, sortable: true },
     { key: 'edits', label: 'Edits', kind: 'count', value: (row) => row.edits, sortable: true },
     { key: 'warnings', label: 'To look at', value: (row) => warningsOf(row), sortable: true },
@@ -150,7 +165,10 @@ export class CharacteristicsPage {
     this.typed.pipe(debounceTime(250), takeUntilDestroyed()).subscribe((search) => this.go({ search: search.trim() || null }));
     this.runs.finished
       .pipe(
-        filter((run) => ['binning.class', 'binning.correlate'].includes(run.kind) && run.entityId === this.binningId()),
+        filter(
+          (run) =>
+            ['binning.class', 'binning.complete', 'binning.correlate'].includes(run.kind) && run.entityId === this.binningId(),
+        ),
         takeUntilDestroyed(),
       )
       .subscribe(() => this.reload());

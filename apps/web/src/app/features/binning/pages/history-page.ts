@@ -1,13 +1,12 @@
 import { ChangeDetectionStrategy, Component, computed, input } from '@angular/core';
 import { MatButtonModule } from '@angular/material/button';
 import { RouterLink } from '@angular/router';
-import type { Bins } from '@tallystone/contracts/binnings/bins';
 import type { Column } from '../../../ui/column';
 import { DenseTable } from '../../../ui/dense-table';
-import { plural } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { type BinningHistory, historyOf } from '../data/binnings';
+import { changeWords, endWords, historyFinding, stateWords } from '../ui/history-words';
 import { reasonWords } from '../ui/reason-words';
 
 type Row = BinningHistory['edits'][number];
@@ -54,13 +53,7 @@ export class HistoryPage {
   protected readonly edits = computed(() => (this.history.hasValue() ? this.history.value().edits : null));
   protected readonly finding = computed(() => {
     const edits = this.edits();
-    if (!edits) return null;
-    const now = edits.filter(({ inEffect }) => inEffect);
-    const open = now.filter(({ reason }) => reason === null).length;
-    const why = open === 0 ? 'each with its reason' : `${open} without a reason yet`;
-    return now.length === 0
-      ? `No edit by hand is in effect, of ${plural(edits.length, 'edit')} made.`
-      : `${plural(now.length, 'edit')} of ${edits.length} ${now.length === 1 ? 'is' : 'are'} in effect, ${why}.`;
+    return edits && historyFinding(edits);
   });
   protected readonly columns: readonly Column<Row>[] = [
     {
@@ -71,29 +64,15 @@ export class HistoryPage {
       sortable: true,
     },
     { key: 'what', label: 'Edit', value: (row) => row.what, width: 36 },
-    { key: 'state', label: 'State', value: (row) => stateOf(row), width: 36, sortable: true },
-    { key: 'reason', label: 'Why', value: (row) => (row.reason ? reasonWords(row.reason) : null), width: 36 },
     { key: 'by', label: 'By', value: (row) => row.by, sortable: true },
     { key: 'at', label: 'When', kind: 'moment', value: (row) => row.at, sortable: true },
-    { key: 'before', label: 'Before', value: (row) => binsWords(row.before), width: 48 },
-    { key: 'after', label: 'After', value: (row) => binsWords(row.after), width: 48 },
+    { key: 'reason', label: 'Why', value: (row) => (row.reason ? reasonWords(row.reason) : null), width: 32 },
+    { key: 'state', label: 'State', value: (row) => stateWords(row), sortable: true },
+    { key: 'ended', label: 'Taken back', value: (row) => endWords(row), width: 36 },
+    { key: 'before', label: 'Before', value: (row) => changeWords(row).before, width: 44 },
+    { key: 'after', label: 'After', value: (row) => changeWords(row).after, width: 44 },
   ];
 
   protected readonly identify = (row: Row): string => row.id;
   protected readonly quiet = (row: Row): boolean => !row.inEffect;
-}
-
-function stateOf({ inEffect, notCarried, carriedFrom }: Row): string {
-  if (notCarried !== null) return `not carried over: ${notCarried}`;
-  if (!inEffect) return 'undone';
-  return carriedFrom ? `carried over from ${carriedFrom.binning}` : 'in effect';
-}
-
-/** Bins in one line: the cuts, or the groups. */
-function binsWords(bins: Bins): string {
-  return bins.kind === 'numeric'
-    ? bins.edges.length === 0
-      ? 'no cut'
-      : bins.edges.join(' | ')
-    : bins.groups.map((group) => group.join(', ')).join(' | ');
 }

@@ -16,7 +16,7 @@ export const utilisation: CharacteristicDetail = {
   missingShare: 0.05,
   bins: 5,
   trend: 'falling',
-  stability: { holdOut: 0.01, outOfTime: null },
+  stability: { holdOut: 0.01, outOfTime: null, byMonth: 0.04 },
   group: null,
   warnings: [],
   edits: 0,
