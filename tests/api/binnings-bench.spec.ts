@@ -305,6 +305,12 @@ describe('several characteristics at once', () => {
     const now = { characteristics: await chosen('age'), constraints: { ...constraints, mostBins: 8, trend: 'rising' } };
     const rising = await modeller.post(url).send(now).expect(200);
     expect(rising.body.characteristics[0]).toMatchObject({ column: 'age', trend: 'rising' });
+    // A trend that is to be chosen says so, for folds to choose it again.
+    const chosenTrend = { characteristics: await chosen('age'), constraints: { ...constraints, trend: 'cross-validated' } };
+    await modeller.post(url).send(chosenTrend).expect(200);
+    expect((await benchOf(modeller, binning.id, 'age')).detail.definition.classing).toMatchObject({
+      trendBy: 'cross-validation',
+    });
     expect(stale.body.problems.map(({ where }: { where: { column: string } }) => where.column)).toEqual(['age', 'utilisation']);
   });
 

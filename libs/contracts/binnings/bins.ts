@@ -41,6 +41,8 @@ export const Constraints = z.strictObject({
   smallestDifference: finite.min(0).max(5).default(0.05),
   /** Of WOE along the value axis: "rising" is falling risk. */
   trend: z.enum(['any', 'rising', 'falling', 'one-peak', 'one-valley']).default('any'),
+  /** The trend was chosen by cross-validated deviance, and is chosen again wherever the classing is repeated. */
+  trendBy: z.enum(['cross-validation']).optional(),
   /** What is best under the constraints; the largest information value when left out. */
   criterion: z.enum(['information value', 'deviance']).optional(),
 });
@@ -50,7 +52,7 @@ export type Constraints = z.infer<typeof Constraints>;
  * Constraints as they are asked for. "monotone" is rising or falling, whichever tells more; "cross-validated" is the trend with the smallest
  * cross-validated deviance. Each characteristic then has the one it was classed under, so that the specification names it.
  */
-export const AskedConstraints = Constraints.extend({
+export const AskedConstraints = Constraints.omit({ trendBy: true }).extend({
   trend: z.enum(['monotone', 'cross-validated', 'any', 'rising', 'falling', 'one-peak', 'one-valley']).default('monotone'),
 });
 export type AskedConstraints = z.infer<typeof AskedConstraints>;

@@ -40,6 +40,7 @@ const automatic: z.ZodType<AutomaticClassing, unknown> = z.strictObject({
   smallestDifference: finite.nonnegative().default(0.05),
   trend: z.enum(['any', 'rising', 'falling', 'one-peak', 'one-valley']).default('any'),
   // No default is written in: a specification from before this key keeps its fingerprint.
+  trendBy: z.enum(['cross-validation']).optional(),
   criterion: z.enum(['information value', 'deviance']).optional(),
 });
 

@@ -97,6 +97,8 @@ export interface AutomaticClassing {
   mostBins: number;
   smallestDifference: number;
   trend: Trend;
+  /** The trend was chosen by cross-validated deviance, so that folds with classing "cuts" choose it again; as stated when left out. */
+  trendBy?: 'cross-validation' | undefined;
   /** The largest information value when left out. */
   criterion?: 'information value' | 'deviance' | undefined;
 }

@@ -11,8 +11,8 @@ import {
   readingOfIv,
 } from '@tallystone/numeric/bench';
 import { classCategories } from '@tallystone/numeric/binning/categories';
-import { chooseTrend } from '@tallystone/numeric/binning/choose-trend';
 import { classNumeric } from '@tallystone/numeric/binning/classing';
+import { crossValidatedTrend } from '../replay/classing';
 
 export interface ClassedBins {
   readonly bins: Bins;
@@ -47,15 +47,16 @@ export function classFine(fine: Fine, asked: AskedConstraints): ClassedBins {
   const known = { rows: rows.slice(0, classes), goods: goods.slice(0, classes), bads: bads.slice(0, classes) };
   const trends = trendsOf(known, asked, totals);
   const tried = trends.map((trend) => {
-    const constraints: Constraints = { ...asked, trend };
+    const constraints: Constraints = {
+      ...asked,
+      trend,
+      ...(asked.trend === 'cross-validated' ? { trendBy: 'cross-validation' } : {}),
+    };
     return { constraints, ...classNumeric(known, constraints, totals) };
   });
   const best = tried.reduce((a, b) => (b.informationValue > a.informationValue ? b : a));
   return { constraints: best.constraints, bins: { kind: 'numeric', edges: best.cuts.map((cut) => fine.edges[cut - 1]), ...own } };
 }
-
-/** Folds and seed of the choice of a trend: fixed, so that the same counts have the same trend everywhere. */
-const choice = { folds: 5, seed: 1 };
 
 function trendsOf(
   known: { rows: number[]; goods: number[]; bads: number[] },
@@ -64,7 +65,7 @@ function trendsOf(
 ): Constraints['trend'][] {
   if (asked.trend === 'monotone') return ['rising', 'falling'];
   if (asked.trend !== 'cross-validated') return [asked.trend];
-  return [chooseTrend(known, { ...asked, trend: 'any' }, { ...choice, totals }).trend];
+  return [crossValidatedTrend(known, { ...asked, trend: 'any' }, totals)];
 }
 
 export interface Summarised {

@@ -1,4 +1,4 @@
-import type { Bins, Constraints } from '@tallystone/contracts/binnings/bins';
+import type { AskedConstraints, Bins, Constraints } from '@tallystone/contracts/binnings/bins';
 import type { BinnedCharacteristic, Classing } from '@tallystone/contracts/specification/types';
 
 /** The bins of a specification entry: what classing and edits decide. */
@@ -33,4 +33,9 @@ export function withBins(entry: BinnedCharacteristic, bins: Bins, classing: Clas
 /** The largest information value is what a specification means when it says nothing, so it says nothing. */
 export function automaticClassing({ criterion, ...constraints }: Constraints): Classing {
   return { made: 'automatic', ...constraints, ...(criterion === 'deviance' ? { criterion } : {}) };
+}
+
+/** What was asked for when a characteristic was classed under these constraints: a trend that was chosen is to be chosen again. */
+export function askedAgain({ trendBy, ...constraints }: Constraints): AskedConstraints {
+  return trendBy === 'cross-validation' ? { ...constraints, trend: 'cross-validated' } : constraints;
 }

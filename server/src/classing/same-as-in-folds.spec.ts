@@ -49,13 +49,22 @@ describe.each([
   ['falling', true],
   ['any', true],
   ['one-peak', false],
+  ['cross-validated', false],
+  ['cross-validated', true],
 ] as const)('classing under trend "%s" (weights: %s)', (trend, weighted) => {
   it.each([1, 2, 3])('is that of a fold that trains on every row, sample %i', (seed) => {
     const sample = invented(seed);
     const weights = weighted ? sample.weights : null;
     const asked = AskedConstraints.parse({ trend, fineClasses: 60 });
     const counted = { rows: ROWS, partition: new Uint8Array(ROWS).fill(DEVELOPMENT), outcome: sample.outcome, weights };
-    const settings = { made: 'automatic', ...asked, trend } as const;
+    // A fold is told how the trend was come to, and not which it was: with another in its place it comes to the same bins.
+    const chosen = trend === 'cross-validated';
+    const settings = {
+      made: 'automatic',
+      ...asked,
+      trend: chosen ? 'rising' : trend,
+      ...(chosen ? { trendBy: 'cross-validation' as const } : {}),
+    } as const;
 
     const numeric = classColumn(
       {
@@ -71,6 +80,14 @@ describe.each([
     const values = Float64Array.from(sample.utilisation, (text) => (text === '' || text === '-999' ? NaN : Number(text)));
     const edges = automaticEdges(values, sample.outcome, weights, settings, 'left');
     expect(numeric).toMatchObject({ automatic: { edges } });
+    if (chosen) {
+      expect(numeric).toMatchObject({
+        constraints: { trendBy: 'cross-validation' },
+        definition: { classing: { trendBy: 'cross-validation' } },
+      });
+      // The data rise in risk throughout: under the trend in its place nothing could be cut.
+      expect(automaticEdges(values, sample.outcome, weights, { ...settings, trendBy: undefined }, 'left')).toEqual([]);
+    }
     // Under a trend against the risk nothing may be cut: equal, and told apart from a comparison of nothing with nothing.
     if (trend !== 'rising') expect(edges.length).toBeGreaterThan(1);
 

@@ -1,4 +1,12 @@
-import { binOf, classCategories, classNumeric, fineEdges, type Constraints } from '@tallystone/numeric';
+import {
+  binOf,
+  chooseTrend,
+  classCategories,
+  classNumeric,
+  fineEdges,
+  type Constraints,
+  type FineCounts,
+} from '@tallystone/numeric';
 import type { AutomaticClassing } from '@tallystone/contracts/specification/types';
 
 /** Automatic classing of one characteristic from rows in memory: what a fold repeats on its training rows. */
@@ -36,8 +44,21 @@ export function automaticEdges(
     rows[fine]++;
     (good ? goods : bads)[fine] += weight;
   }
+  const classes = { goods, bads, rows };
+  const constraints = constraintsOf(settings);
+  // What was chosen by cross-validation is chosen again here: a fold that kept the trend of all rows would know more than it may.
+  const trend = settings.trendBy === 'cross-validation' ? crossValidatedTrend(classes, constraints, totals) : constraints.trend;
   // A cut before fine class i is the edge between i - 1 and i.
-  return classNumeric({ goods, bads, rows }, constraintsOf(settings), totals).cuts.map((cut) => edges[cut - 1]);
+  return classNumeric(classes, { ...constraints, trend }, totals).cuts.map((cut) => edges[cut - 1]);
+}
+
+/** The trend with the smallest cross-validated deviance. Folds and seed are fixed, so that the same counts have the same trend everywhere. */
+export function crossValidatedTrend(
+  known: FineCounts,
+  constraints: Constraints,
+  totals: { goods: number; bads: number },
+): Constraints['trend'] {
+  return chooseTrend(known, { ...constraints, trend: 'any' }, { folds: 5, seed: 1, totals }).trend;
 }
 
 /**

@@ -5,6 +5,7 @@ import { BinningEdit } from '../../models/binning';
 import type { Actor } from '../../models/person';
 import { appendRecord } from '../record/append';
 import type { ClassedColumn } from '../../classing/class-column';
+import { askedAgain } from '../../classing/definition';
 import { type StoredEdit, editsInEffect } from './edits';
 import type { Earlier } from './class-characteristics';
 import { decidedEarlier } from './find-characteristic';
@@ -29,7 +30,7 @@ export async function readEarlier(
     found.map(async ({ id, column, constraints, included, leftOutReason, special }) => {
       const stored = await editsInEffect(sequelize, id);
       const edits = stored.map(({ kind, before, after }) => ({ kind, before, after, special }));
-      return [column, { constraints, included, leftOutReason, stored, edits }] as const;
+      return [column, { constraints: askedAgain(constraints), included, leftOutReason, stored, edits }] as const;
     }),
   );
   return new Map(entries);

@@ -31,8 +31,11 @@ export const usualConstraints: AskedConstraints = {
 const number = (value: number, ...validators: ValidatorFn[]): FormControl<number> =>
   new FormControl(value, { nonNullable: true, validators: [Validators.required, ...validators] });
 
-/** The share is typed in per cent. */
-export function constraintsForm(from: AskedConstraints = usualConstraints) {
+/** Constraints as they are asked for, or as a characteristic was classed: there the trend has been chosen, and `trendBy` says how. */
+export type KnownConstraints = AskedConstraints & { readonly trendBy?: 'cross-validation' | undefined };
+
+/** The share is typed in per cent. A trend that was chosen by cross-validation is asked for again. */
+export function constraintsForm(from: KnownConstraints = usualConstraints) {
   return new FormGroup({
     fineClasses: number(from.fineClasses, Validators.min(2), Validators.max(200)),
     smallestShare: number(Math.round(from.smallestShare * 1e6) / 1e4, Validators.min(0), Validators.max(50)),
@@ -40,7 +43,7 @@ export function constraintsForm(from: AskedConstraints = usualConstraints) {
     smallestBads: number(from.smallestBads, Validators.min(0)),
     mostBins: number(from.mostBins, Validators.min(1), Validators.max(50)),
     smallestDifference: number(from.smallestDifference, Validators.min(0), Validators.max(5)),
-    trend: new FormControl<Trend>(from.trend, { nonNullable: true }),
+    trend: new FormControl<Trend>(from.trendBy === 'cross-validation' ? 'cross-validated' : from.trend, { nonNullable: true }),
     criterion: new FormControl<Criterion>(from.criterion ?? 'information value', { nonNullable: true }),
   });
 }

@@ -6,11 +6,11 @@ import { MatFormFieldModule } from '@angular/material/form-field';
 import { MatInputModule } from '@angular/material/input';
 import type { AskedConstraints } from '@tallystone/contracts/binnings/bins';
 import { plural } from '../../../ui/numbers';
-import { ConstraintsFields, constraintsForm, constraintsOf } from './constraints-form';
+import { ConstraintsFields, type KnownConstraints, constraintsForm, constraintsOf } from './constraints-form';
 
 export interface ReclassQuestion {
   readonly columns: readonly string[];
-  readonly constraints: AskedConstraints;
+  readonly constraints: KnownConstraints;
   /** Manual edits that would no longer be in effect. */
   readonly edits: number;
 }
