@@ -46,7 +46,8 @@ export async function readDemoPlaces({ request }: Page): Promise<DemoPlaces> {
   };
 }
 
-async function post<T>(page: Page, address: string, data: unknown): Promise<T> {
+/** Sends what the client would send, in the name of whoever is signed in on the page. Throws where it is refused. */
+export async function post<T>(page: Page, address: string, data: unknown): Promise<T> {
   const token = (await page.context().cookies()).find(({ name }) => name === 'XSRF-TOKEN')?.value ?? '';
   const response = await page.request.post(address, { data, headers: { 'X-XSRF-TOKEN': token, 'Idempotency-Key': randomUUID() } });
   if (!response.ok()) throw new Error(`${response.status()} ${address}: ${await response.text()}`);
@@ -66,9 +67,9 @@ export const enterEmptyModel = (page: Page, name: string): Promise<Model> =>
   });
 
 /** Invites a person from an admin's page and takes the token out of the letter, which the demo keeps as a file. */
-export async function inviteByMail(page: Page): Promise<string> {
+export async function inviteByMail(page: Page, name = 'Nia Newcomer', role = 'validator'): Promise<string> {
   const email = `newcomer-${randomUUID().slice(0, 8)}@saltmarsh.example`;
-  await post(page, '/api/invitations', { name: 'Nia Newcomer', email, roles: ['validator'] });
+  await post(page, '/api/invitations', { name, email, roles: [role] });
   const folder = join(process.env['TALLYSTONE_E2E_DATA']!, 'mail');
   for (let tries = 0; tries < 100; tries += 1) {
     for (const name of readdirSync(folder)) {
