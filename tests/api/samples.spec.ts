@@ -216,6 +216,23 @@ describe('a sample from its file to its definition', () => {
     expect(Buffer.from(stored.partition).equals(Buffer.from(again.partition))).toBe(true);
     expect(Buffer.from(stored.outcome).equals(Buffer.from(again.outcome))).toBe(true);
     expect([...stored.exclusion]).toEqual([...again.exclusion]);
+    // The inputs are compared partition by partition, for the validator too, and no outcome is told.
+    const { body: balance } = await validator.get(`${path}/definitions/${definitionId}/balance`).expect(200);
+    expect(balance.definitionId).toBe(definitionId);
+    expect(balance.characteristics.map(({ column }: { column: string }) => column)).toEqual(['age', 'income', 'home', 'channel', 'bureau_score']);
+    const { development, holdOut } = stored.counts;
+    for (const { holdOut: reading } of balance.characteristics) {
+      expect(reading.rows).toBe(holdOut.goods + holdOut.bads);
+      // 95 % point of chi-square(classes - 1) times (1/N + 1/M): 1 and 2 degrees of freedom are in any table of it, 3.841 and 5.991.
+      const unit = 1 / (development.goods + development.bads) + 1 / reading.rows;
+      if (reading.classes <= 3) expect(reading.criticalValue).toBeCloseTo([3.841459, 5.991465][reading.classes - 2] * unit, 6);
+      expect(reading.pValue < 0.05).toBe(reading.index > reading.criticalValue);
+    }
+    // Staff is excluded, so that branch and web are left.
+    expect(balance.characteristics[3].holdOut.classes).toBe(2);
+    expect(JSON.stringify(balance)).not.toMatch(/good|bad/i);
+    await other.get(`${path}/definitions/${definitionId}/balance`).expect(404);
+    await expect(server.context.sequelize.query(`UPDATE sample_balances SET characteristics = '[]'`)).rejects.toThrow(/permission denied/);
     const { body: work } = await modeller.get(`/api/models/${modelId}/work`).expect(200);
     expect(work.steps[0]).toMatchObject({ step: 'sample', state: 'done' });
   });
@@ -286,6 +303,47 @@ describe('outcomes that cannot be fitted are blocked with their values and count
     expect(body.counts.waterfall.find(({ kind }: { kind: string }) => kind === 'outcome')).toMatchObject({ out: 8 });
     const { development, holdOut } = body.counts.partitions;
     expect(development.indeterminates + holdOut.indeterminates).toBe(8);
+    // 16 goods, 8 bads and 8 indeterminates; three in ten of each class that is drawn from, rounded, are hold-out.
+    const rate = (goods: number, bads: number) => ({ goods, bads, badRate: bads / (goods + bads) });
+    expect(body.counts.sensitivity).toEqual([
+      { indeterminates: 'as they are', development: rate(11, 6), holdOut: rate(5, 2) },
+      { indeterminates: 'as good', development: rate(17, 6), holdOut: rate(7, 2) },
+      { indeterminates: 'as bad', development: rate(11, 11), holdOut: rate(5, 5) },
+    ]);
+  });
+
+  it('a rule on days past due and months on book, with what each part takes', async () => {
+    const lines = Array.from({ length: 80 }, (_, row) => `${1000 + ((row * 37) % 500)},${row % 8 === 0 ? 120 : row % 8 === 1 ? 45 : row % 8},${row % 20 === 0 ? '' : row % 10 === 5 ? 6 : 24}`);
+    const { path, etag, content } = await draftOf(`income,dpd,months\n${lines.join('\n')}\n`);
+    const as = (roles: Record<string, 'outcome' | 'characteristic' | 'not used'>) =>
+      content.columns.map((column) => ({ ...column, role: roles[column.column] ?? column.role }));
+    const rule = { bad: 90, indeterminate: 30, missing: 'refuse', monthsOnBook: { column: 'months', least: 12 } };
+    const outcome = { good: [], bad: [], indeterminate: [], excluded: [], rule };
+    const save = (tag: string, change: object) => modeller.put(`${path}/draft`).set('If-Match', tag).send({ ...content, ...change });
+    const leaking = await save(etag, { columns: as({ dpd: 'outcome', months: 'characteristic' }), outcome: { ...outcome, rule: { ...rule, indeterminate: 90 } } }).expect(200);
+    expect(leaking.body.problems.map(({ code }: { code: string }) => code)).toEqual(['rule-order', 'leaks']);
+    const columns = as({ dpd: 'outcome', months: 'not used' });
+    const saved = await save(leaking.headers.etag, { columns, outcome }).expect(200);
+    expect(saved.body.problems).toEqual([]);
+    // Rows 0, 20, 40, 60 have no months on book.
+    const refused = await modeller.post(`${path}/draft/check`).expect(200);
+    expect(refused.body.problems).toMatchObject([{ code: 'no-months-on-book', where: { column: 'months' } }]);
+    const whole = await save(saved.headers.etag, { columns, outcome: { ...outcome, rule: { ...rule, missing: 'excluded' } } }).expect(200);
+    const { body } = await modeller.post(`${path}/draft/check`).expect(200);
+    // Every tenth from row 5 is too young: none of them falls on a multiple of 8, four on a remainder of 1 or 5 each.
+    const left = Array.from({ length: 80 }, (_, row) => row).filter((row) => row % 20 !== 0 && row % 10 !== 5);
+    const having = (remainder: (row: number) => boolean) => left.filter((row) => remainder(row % 8)).length;
+    const [bads, indeterminates] = [having((at) => at === 0), having((at) => at === 1)];
+    const goods = left.length - bads - indeterminates;
+    expect(body.counts.byRule).toEqual({ tooFewMonths: 8, missing: 4, bads, indeterminates, goods, badRate: bads / (goods + bads) });
+    expect(body.counts.waterfall.find(({ kind }: { kind: string }) => kind === 'outcome')).toMatchObject({ out: 12 });
+    const started = await modeller.post(`${path}/definitions`).send({ revision: whole.body.revision as number }).expect(202);
+    const { definitionId } = (await modeller.ended(started.body.id as string)).result as { definitionId: string };
+    const { body: definition } = await modeller.get(`${path}/definitions/${definitionId}`).expect(200);
+    expect(definition.content.outcome).toEqual({
+      daysPastDue: { column: 'dpd', bad: 90, indeterminate: 30, missing: 'excluded' },
+      monthsOnBook: { column: 'months', least: 12 },
+    });
   });
 
   it('weights below zero, that are no numbers, or all zero', async () => {

@@ -1,6 +1,6 @@
 import { z } from 'zod';
 import { ProblemItem } from '../problems/schema';
-import type { DataReading, Exclusion, Partition as SpecificationPartition } from '../specification/types';
+import type { DataReading, Exclusion, OutcomeDefinition, Partition as SpecificationPartition } from '../specification/types';
 import { ColumnRole } from './columns';
 import { ColumnKind, ReadingChoices } from './reading';
 
@@ -52,11 +52,22 @@ export const DefinedColumn = z.strictObject({
 });
 export type DefinedColumn = z.infer<typeof DefinedColumn>;
 
+/** Bad, indeterminate and excluded by days past due and months on book; the days past due are the column with the role of the outcome. */
+export const DraftOutcomeRule = z.strictObject({
+  bad: z.number().positive('More than 0 days').max(10_000),
+  indeterminate: z.number().min(0, 'At least 0 days').max(10_000).nullable(),
+  missing: z.enum(['refuse', 'excluded']),
+  monthsOnBook: z.strictObject({ column: columnName, least: z.number().positive('More than 0 months').max(1000) }).nullable(),
+});
+export type DraftOutcomeRule = z.infer<typeof DraftOutcomeRule>;
+
 export const DraftOutcome = z.strictObject({
   good: z.array(value).max(1000),
   bad: z.array(value).max(1000),
   indeterminate: z.array(value).max(1000),
   excluded: z.array(value).max(1000),
+  /** Where it is stated, the lists above do not count. */
+  rule: DraftOutcomeRule.optional(),
 });
 export type DraftOutcome = z.infer<typeof DraftOutcome>;
 
@@ -149,10 +160,34 @@ export const WaterfallStep = z.object({
 });
 export type WaterfallStep = z.infer<typeof WaterfallStep>;
 
+const KnownOutcomes = z.object({ goods: z.int(), bads: z.int(), badRate: z.number().nullable() });
+/** The whole definition carried out again with another reading of the indeterminates; out-of-time is not told. */
+export const SensitivityCase = z.object({
+  indeterminates: z.enum(['as they are', 'as good', 'as bad']),
+  development: KnownOutcomes,
+  holdOut: KnownOutcomes,
+});
+export type SensitivityCase = z.infer<typeof SensitivityCase>;
+
+/** What each part of an outcome by rule takes. Rows that are left after the exclusions; goods, bads and indeterminates without out-of-time. */
+export const RuleCounts = z.object({
+  tooFewMonths: z.int(),
+  missing: z.int(),
+  bads: z.int(),
+  indeterminates: z.int(),
+  goods: z.int(),
+  badRate: z.number().nullable(),
+});
+export type RuleCounts = z.infer<typeof RuleCounts>;
+
 export const DefinitionCounts = z.object({
   waterfall: z.array(WaterfallStep),
   partitions: z.object({ development: PartitionCounts, holdOut: PartitionCounts, outOfTime: CoveredCounts }),
   declined: z.int(),
+  /** What an outcome by rule makes of the rows; null where the outcome is by values. */
+  byRule: RuleCounts.nullable(),
+  /** Empty where nothing is indeterminate; null for a definition confirmed before this was counted. */
+  sensitivity: z.array(SensitivityCase).nullable(),
 });
 export type DefinitionCounts = z.infer<typeof DefinitionCounts>;
 
@@ -166,7 +201,7 @@ export type DraftCheck = z.infer<typeof DraftCheck>;
 export interface SampleDefinitionContent {
   data: DataReading;
   exclusions: Exclusion[];
-  outcome: { column: string; good: string[]; bad: string[]; indeterminate: string[]; excluded: string[] };
+  outcome: OutcomeDefinition;
   declined: { column: string; values: string[]; method: 'none'; bands: number; uplift: number } | null;
   weight: { column: string } | null;
   partition: SpecificationPartition;

@@ -1,5 +1,6 @@
 import { defineEndpoint } from '../endpoint';
 import { Run } from '../runs/schema';
+import { PartitionBalance } from './balance';
 import { ColumnList } from './columns';
 import { ConfirmDraft, ConfirmReading, Definition, DefinitionList, Draft, DraftCheck, DraftContent } from './definition';
 import { Preview, PreviewRequest } from './reading';
@@ -132,4 +133,11 @@ export const readDefinition = defineEndpoint({
   summary: 'One confirmed definition',
   params: DefinitionParams,
   response: Definition,
+});
+export const readBalance = defineEndpoint({
+  method: 'GET',
+  path: `${ofSample}/definitions/:definitionId/balance`,
+  summary: 'How each characteristic is spread in hold-out and out-of-time against development: inputs only',
+  params: DefinitionParams,
+  response: PartitionBalance,
 });

@@ -144,6 +144,13 @@ describe('a specification', () => {
       'listed-twice characteristics',
     ]);
     expect(places({ outcome: { column: 'bad', good: ['0'], bad: ['0'] } })).toEqual(['listed-twice outcome']);
+    const late = { column: 'dpd', bad: 90, indeterminate: 30 };
+    expect(places({ outcome: { daysPastDue: { ...late, indeterminate: 90 } } })).toEqual(['not-ascending outcome.daysPastDue.indeterminate']);
+    expect(places({ outcome: { daysPastDue: late, monthsOnBook: { column: 'dpd', least: 12 } } })).toEqual([
+      'listed-twice outcome.monthsOnBook.column',
+    ]);
+    expect(places({ outcome: { daysPastDue: late, column: 'bad' } })).toEqual(['unknown-key outcome.column']);
+    expect(places({ outcome: { daysPastDue: late, monthsOnBook: { column: 'age', least: 12 } } })).toEqual(['leaks characteristics[0].column']);
     expect(places({ fit: { mixing: [0, 1], lambda: { value: 1 } } })).toEqual(['needs-rule fit.mixing']);
     expect(places({ fit: { mixing: 1, lambda: { count: 9 }, choose: 'minimum' } })).toEqual(['needs-folds fit.folds']);
     expect(places({ reasons: { baseline: 'cut-off' } })).toEqual(['needs-cut-off reasons.baseline']);

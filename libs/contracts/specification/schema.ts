@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { problemsOf, repeated, type Finding } from './issues';
+import { outcomeColumns } from './outcome';
 import { sections } from './sections';
 import { pathText } from './issues';
 import type { Specification, SpecificationProblem } from './types';
@@ -66,7 +67,7 @@ function acrossSections(given: Partial<Specification>): Finding[] {
     if (weight) barred.set(weight.column, 'the weight');
     if (partition && 'column' in partition) barred.set(partition.column, 'the partition');
     if (declined) barred.set(declined.column, 'the decision');
-    if (outcome) barred.set(outcome.column, 'the outcome');
+    for (const column of outcome ? outcomeColumns(outcome) : []) barred.set(column, 'the outcome');
     characteristics.forEach((entry, index) => {
       const use = barred.get(entry.column);
       if (use !== undefined) {

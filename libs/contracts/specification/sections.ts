@@ -11,6 +11,8 @@ import type {
   FitSettings,
   Folds,
   LambdaChoice,
+  OutcomeByRule,
+  OutcomeByValues,
   OutcomeDefinition,
   Partition,
   PartitionByColumn,
@@ -89,7 +91,7 @@ function rowTest(withReason: boolean): z.ZodType<RowTest, unknown> {
   });
 }
 
-const outcome = checked<OutcomeDefinition>(
+const outcomeByValues = checked<OutcomeByValues>(
   z.strictObject({
     column: columnName,
     good: texts.min(1),
@@ -103,6 +105,28 @@ const outcome = checked<OutcomeDefinition>(
     }
   },
 );
+
+const days = finite.nonnegative();
+
+const outcomeByRule = checked<OutcomeByRule>(
+  z.strictObject({
+    daysPastDue: z.strictObject({
+      column: columnName,
+      bad: finite.positive(),
+      indeterminate: days.nullable().default(null),
+      missing: z.enum(['refuse', 'excluded']).default('refuse'),
+    }),
+    monthsOnBook: z.strictObject({ column: columnName, least: finite.positive() }).nullable().default(null),
+  }),
+  ({ daysPastDue, monthsOnBook }, report) => {
+    if (daysPastDue.indeterminate !== null && daysPastDue.indeterminate >= daysPastDue.bad)
+      report(['daysPastDue', 'indeterminate'], 'not-ascending', 'Indeterminate begins below the days past due from which a row is bad.');
+    if (monthsOnBook?.column === daysPastDue.column)
+      report(['monthsOnBook', 'column'], 'listed-twice', `"${daysPastDue.column}" cannot hold days past due and months on book.`);
+  },
+);
+
+const outcome = alternative<OutcomeDefinition>((value) => (has(value, 'daysPastDue') ? outcomeByRule : outcomeByValues));
 
 const declined: z.ZodType<DeclinedTreatment, unknown> = z.strictObject({
   column: columnName,

@@ -42,13 +42,32 @@ export type RowTest = ColumnTest | { all: RowTest[] } | { any: RowTest[] };
 export type Exclusion = { reason: string } & RowTest;
 
 /** Which texts of the outcome column mean what. The four lists are disjoint. */
-export interface OutcomeDefinition {
+export interface OutcomeByValues {
   column: string;
   good: string[];
   bad: string[];
   indeterminate: string[];
   excluded: string[];
 }
+
+/**
+ * The outcome from how late an account was, and for how long it was seen: too few months on book are excluded; then days past due of at least
+ * `bad` are bad, from `indeterminate` to below `bad` indeterminate, fewer good. An optional extension of the format.
+ */
+export interface OutcomeByRule {
+  daysPastDue: {
+    column: string;
+    bad: number;
+    /** Null: nothing is indeterminate. */
+    indeterminate: number | null;
+    /** What a row is whose days past due (or months on book) are missing: a problem, or excluded. */
+    missing: 'refuse' | 'excluded';
+  };
+  /** Null: nobody is excluded for want of months. */
+  monthsOnBook: { column: string; least: number } | null;
+}
+
+export type OutcomeDefinition = OutcomeByValues | OutcomeByRule;
 
 export type DeclinedMethod = 'none' | 'reweighting' | 'parcelling' | 'fuzzy';
 

@@ -1,5 +1,6 @@
 import type { PartitionCounts, ResultCounts } from '@tallystone/contracts/result/types';
 import type { Specification } from '@tallystone/contracts/specification/types';
+import { outcomeColumns, outcomeExcludes } from '@tallystone/contracts/specification/outcome';
 import { Columns } from './columns';
 import { applyExclusions } from './exclusions';
 import { assignFolds } from './folds';
@@ -44,7 +45,7 @@ export function prepare(definition: SampleDefinition, source: ColumnSource, opti
     const { goods, bads } = counts.development;
     if (goods === 0 || bads === 0) {
       const message = `Development has ${goods} good${goods === 1 ? '' : 's'} and ${bads} bad${bads === 1 ? '' : 's'}; a fit needs both.`;
-      problems.push({ code: 'one-class', message, where: { column: spec.outcome.column } });
+      problems.push({ code: 'one-class', message, where: { column: outcomeColumns(spec.outcome)[0] } });
     }
     if (counts.development.weight === 0 && goods + bads > 0) {
       problems.push({
@@ -78,7 +79,7 @@ function count(
   const empty = (): PartitionCounts => ({ rows: 0, goods: 0, bads: 0, indeterminates: 0, weight: 0 });
   const by = { [DEVELOPMENT]: empty(), [HOLD_OUT]: empty(), [OUT_OF_TIME]: empty() };
   const reasons = spec.exclusions.map((rule) => rule.reason);
-  if (spec.outcome.excluded.length > 0) reasons.push('excluded by outcome');
+  if (outcomeExcludes(spec.outcome)) reasons.push('excluded by outcome');
   const excluded = reasons.map((reason) => ({ reason, rows: 0, bads: 0 }));
   let declined = 0;
   for (let row = 0; row < outcome.length; row++) {

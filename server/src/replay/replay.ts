@@ -1,4 +1,5 @@
 import type { Result } from '@tallystone/contracts/result/types';
+import { isByRule, outcomeColumns } from '@tallystone/contracts/specification/outcome';
 import type { RowTest, Specification } from '@tallystone/contracts/specification/types';
 import { codeCharacteristics } from './coding';
 import { fitCoded, type FittedModel, type FitRequest, type Method } from './fit';
@@ -56,8 +57,9 @@ export function replay(request: ReplayRequest): Replayed {
 
 /** The columns that a specification reads, and which of them are read as numbers only. */
 export function columnsRead(spec: Specification): { all: string[]; numbersOnly: Set<string> } {
-  const text = new Set<string>([spec.outcome.column]);
+  const text = new Set<string>();
   const numbers = new Set<string>();
+  for (const column of outcomeColumns(spec.outcome)) (isByRule(spec.outcome) ? numbers : text).add(column);
   const visit = (rule: RowTest): void => {
     if ('all' in rule) rule.all.forEach(visit);
     else if ('any' in rule) rule.any.forEach(visit);

@@ -5,7 +5,7 @@ import { inventedSample, specificationOf, sourceOfSample, type Sample } from './
 import { prepare } from './prepare';
 import { ReplayError } from './problems';
 import { sourceOf, type ColumnSource } from './source';
-import { BAD, DEVELOPMENT, GOOD, HOLD_OUT, NO_BIN, OUT_OF_TIME } from './types';
+import { BAD, DEVELOPMENT, GOOD, HOLD_OUT, INDETERMINATE, NO_BIN, NO_OUTCOME, OUT_OF_TIME } from './types';
 
 const sha = (text: string): string => createHash('sha256').update(text, 'utf8').digest('hex');
 const sample = inventedSample(900);
@@ -116,6 +116,39 @@ describe('outcome, weight and partition', () => {
     expect(all).toBe(900);
     expect(excluded.map((one) => one.reason)).toEqual(['branch 3', 'excluded by outcome']);
     expect(declined).toBe(sample['decision'].filter((text, row) => text === 'declined' && sample['branch'][row] !== 'b3').length);
+  });
+
+  it('come from days past due and months on book by rule', () => {
+    const file = {
+      dpd: ['0', '29', '30', '89', '90', '400', '', '95', '0', '31'],
+      months: ['12', '30', '12', '12', '12', '12', '12', '11', '3', ''],
+      part: new Array<string>(10).fill('d'),
+    };
+    const by = (missing: string, more: object = {}) => ({
+      partition: { column: 'part', development: ['d'] },
+      outcome: { daysPastDue: { column: 'dpd', bad: 90, indeterminate: 30, missing }, monthsOnBook: { column: 'months', least: 12 } },
+      ...more,
+    });
+    const { outcome, counts } = prepare(specificationOf(by('excluded')), sourceOf(file));
+    expect([...outcome]).toEqual([GOOD, GOOD, INDETERMINATE, INDETERMINATE, BAD, BAD, ...new Array<number>(4).fill(NO_OUTCOME)]);
+    expect(counts.excluded).toEqual([{ reason: 'excluded by outcome', rows: 4, bads: 0 }]);
+    // Missing days and missing months are each told; a row that is excluded for few months needs no days.
+    expect(problemsOf(() => prepare(specificationOf(by('refuse')), sourceOf(file))).map(({ code, where }) => [code, where.column, where.count])).toEqual([
+      ['no-days-past-due', 'dpd', 1],
+      ['no-months-on-book', 'months', 1],
+    ]);
+    // -999 is a code and no number of days: it is never good.
+    const coded = { ...file, dpd: file.dpd.map((text) => (text === '' ? '-999' : text)) };
+    expect(problemsOf(() => prepare(specificationOf(by('excluded')), sourceOf(coded)))[0]).toMatchObject({
+      code: 'no-days-past-due',
+      where: { values: [{ value: '-999', rows: 1 }] },
+    });
+    // What an exclusion takes out is counted by the rule too, and a declined row has no outcome.
+    const excluding = by('excluded', { exclusions: [{ reason: 'very late', column: 'dpd', atLeast: 400 }] });
+    expect(prepare(specificationOf(excluding), sourceOf(file)).counts.excluded[0]).toEqual({ reason: 'very late', rows: 1, bads: 1 });
+    const decided = { ...file, decision: file.dpd.map((text) => (text === '' ? 'declined' : 'accepted')) };
+    const declining = by('excluded', { declined: { column: 'decision', values: ['declined'], method: 'none' } });
+    expect(prepare(specificationOf(declining), sourceOf(decided)).counts.declined).toBe(1);
   });
 
   it('blocks a fit on one class', () => {

@@ -1,9 +1,13 @@
-import type { DefinitionCounts, SampleDefinitionContent, WaterfallStep } from '@tallystone/contracts/samples/definition';
+import type { DefinitionCounts, RuleCounts, SampleDefinitionContent, WaterfallStep } from '@tallystone/contracts/samples/definition';
+import { isByRule } from '@tallystone/contracts/specification/outcome';
 import type { ResultCounts } from '@tallystone/contracts/result/types';
+import { Columns } from '../replay/columns';
 import { prepare } from '../replay/prepare';
 import { ReplayError, type ReplayProblem } from '../replay/problems';
 import type { SourceColumn } from '../replay/source';
-import { HOLD_OUT, OUT_OF_TIME, type Prepared } from '../replay/types';
+import { type IndeterminateCase, indeterminateCases } from '../replay/indeterminates';
+import { type OutcomeReader, TOO_FEW_MONTHS, outcomeReader } from '../replay/outcome';
+import { GOOD, HOLD_OUT, OUT_OF_TIME, type Prepared } from '../replay/types';
 import type { Task } from './task';
 
 export interface PreparePayload {
@@ -25,13 +29,14 @@ export type PrepareAnswer =
 /** Carries out a definition on its rows, off the event loop: every problem of the rows, or who is in which partition with the waterfall. */
 export const prepareSample: Task<PreparePayload, PrepareAnswer> = ({ content, rows, columns }) => {
   try {
-    const prepared = prepare(content, { rows, column: (name) => columns.get(name) });
+    const source = { rows, column: (name: string) => columns.get(name) };
+    const prepared = prepare(content, source);
     const { partition, outcome, exclusion, weights, counts } = prepared;
     return {
       problems: null,
       prepared: { partition, outcome, exclusion, weights },
       result: counts,
-      counts: describe(content, prepared, columns),
+      counts: describe(content, prepared, columns, indeterminateCases(content, prepared, source)),
     };
   } catch (error) {
     if (error instanceof ReplayError) return { problems: error.problems };
@@ -45,12 +50,14 @@ function describe(
   content: SampleDefinitionContent,
   prepared: Prepared,
   columns: ReadonlyMap<string, SourceColumn>,
+  cases: readonly IndeterminateCase[],
 ): DefinitionCounts {
   const { counts } = prepared;
-  const saysGood = goodTest(content, columns);
+  const reader = outcomeReader(content.outcome, new Columns({ rows: prepared.rows, column: (name) => columns.get(name) }, content.data));
+  if (reader === null) throw new Error('A sample that was prepared has the columns of its outcome');
   const goodsOut = counts.excluded.map(() => 0);
   prepared.exclusion.forEach((rule, row) => {
-    if (rule > 0 && saysGood(row)) goodsOut[rule - 1]++;
+    if (rule > 0 && reader.says(row) === GOOD) goodsOut[rule - 1]++;
   });
 
   const waterfall: WaterfallStep[] = [
@@ -85,6 +92,7 @@ function describe(
   if (left !== counts.development.rows)
     throw new Error(`The waterfall leaves ${left} rows and development has ${counts.development.rows}`);
 
+  const rated = ({ goods, bads }: { goods: number; bads: number }) => ({ goods, bads, badRate: badRate(goods, bads) });
   const told = (part: ResultCounts['development']) => ({ ...part, badRate: badRate(part.goods, part.bads) });
   return {
     waterfall,
@@ -94,14 +102,21 @@ function describe(
       outOfTime: { covered: false, ...told(counts.outOfTime) },
     },
     declined: counts.declined,
+    byRule: countRule(content, prepared, reader),
+    sensitivity: cases.map((entry) => ({ ...entry, development: rated(entry.development), holdOut: rated(entry.holdOut) })),
   };
 }
 
-/** Whether the outcome column, read by itself, says good: for the bad rate of what an exclusion takes out. */
-function goodTest(content: SampleDefinitionContent, columns: ReadonlyMap<string, SourceColumn>): (row: number) => boolean {
-  const column = columns.get(content.outcome.column);
-  const good = new Set(content.outcome.good);
-  if (column?.kind !== 'texts') return () => false;
-  const byText = column.texts.map((text) => good.has(text));
-  return (row) => byText[column.codes[row]];
+/** What each part of an outcome by rule takes; null where the outcome is by values. */
+function countRule(content: SampleDefinitionContent, { counts, exclusion, outcome }: Prepared, reader: OutcomeReader): RuleCounts | null {
+  if (!isByRule(content.outcome)) return null;
+  let [tooFewMonths, missing] = [0, 0];
+  for (let row = 0; row < outcome.length; row++) {
+    if (exclusion[row] !== content.exclusions.length + 1) continue;
+    if (reader.says(row) === TOO_FEW_MONTHS) tooFewMonths++;
+    else missing++;
+  }
+  const of = (what: 'goods' | 'bads' | 'indeterminates'): number => counts.development[what] + counts.holdOut[what];
+  const [goods, bads] = [of('goods'), of('bads')];
+  return { tooFewMonths, missing, bads, indeterminates: of('indeterminates'), goods, badRate: badRate(goods, bads) };
 }

@@ -1,5 +1,6 @@
 import { classColumn, countColumnMonths, reclassFine, splitColumn } from '../classing/class-column';
 import { correlateCodes, inflate } from '../classing/correlate';
+import { balanceColumn } from './balance-column';
 import { buildScorecard } from './build-scorecard';
 import { codeSegment } from './code-segment';
 import { compareFits } from './compare-fits';
@@ -25,6 +26,7 @@ export const tasks = {
   'fit.path': fitPenaltyPath,
   'password.hash': hashPassword,
   'password.verify': verifyPassword,
+  'sample.balance': balanceColumn,
   'sample.code': codeSegment,
   'sample.prepare': prepareSample,
   'sample.profile': profileStored,

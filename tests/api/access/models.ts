@@ -57,6 +57,7 @@ export const sampleRows: readonly AccessRow[] = [
   developsModel(`POST ${ofSample}/definitions`),
   readsModel(`GET ${ofSample}/definitions`),
   readsModel(`GET ${ofSample}/definitions/:definitionId`),
+  readsModel(`GET ${ofSample}/definitions/:definitionId/balance`),
   // Last of its kind: whoever may, discards the sample.
   { ...developsModel(`DELETE ${ofSample}`), ...spare },
 ];

@@ -1,3 +1,4 @@
+import { isByRule, outcomeColumns, outcomeWords } from '@tallystone/contracts/specification/outcome';
 import type { Writer } from '../page/writer';
 import { area, fixed, plural, rate, whole } from '../number-texts';
 import { isCovered, partitions } from './wording';
@@ -9,13 +10,14 @@ const listed = (values: readonly string[]): string =>
 export function writeOutcome(writer: Writer): void {
   const { input } = writer;
   const { outcome, declined } = input.specification;
+  const words = outcomeWords(outcome);
   writer.beginSection('5', 'Outcome and windows');
   writer.facts([
-    ['Outcome column', outcome.column],
-    ['Good', listed(outcome.good)],
-    ['Bad', listed(outcome.bad)],
-    ['Indeterminate', listed(outcome.indeterminate)],
-    ['Excluded values', listed(outcome.excluded)],
+    [isByRule(outcome) ? 'Outcome by rule on' : 'Outcome column', outcomeColumns(outcome).join(', ')],
+    ['Good', words.good],
+    ['Bad', words.bad],
+    ['Indeterminate', words.indeterminate],
+    [isByRule(outcome) ? 'Excluded' : 'Excluded values', words.excluded],
     [
       'Declined',
       declined === null

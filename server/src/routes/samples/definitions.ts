@@ -2,6 +2,7 @@ import * as endpoints from '@tallystone/contracts/samples/endpoints';
 import { canDefineSample, canReadSample } from '../../policies/samples';
 import { notFound } from '../../problems/problem';
 import { describeRun } from '../../services/runs/find';
+import { readBalance } from '../../services/samples/balance';
 import { confirmDraft } from '../../services/samples/confirm-draft';
 import { listDefinitions, readDefinition } from '../../services/samples/definitions';
 import { checkDraft, findDraft, presentDraft, saveDraft } from '../../services/samples/draft';
@@ -71,6 +72,16 @@ export function definitionRoutes(): Route[] {
         const definition = await readDefinition(context.sequelize, subject, params.definitionId);
         if (!definition) throw notFound();
         return definition;
+      },
+    }),
+    defineRoute(endpoints.readBalance, {
+      access: 'signed-in',
+      find: ({ context, params }) => findSample(context.sequelize, params.modelId, params.sampleId),
+      authorise: ({ person, subject }) => canReadSample(person, subject),
+      async act({ context, subject, params }) {
+        const balance = await readBalance(context.sequelize, subject, params.definitionId);
+        if (!balance) throw notFound();
+        return balance;
       },
     }),
   ];

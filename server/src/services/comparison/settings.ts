@@ -1,4 +1,5 @@
 import type { DifferingSetting } from '@tallystone/contracts/comparison/schema';
+import { outcomeColumns, outcomeWords } from '@tallystone/contracts/specification/outcome';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import type { z } from 'zod';
 
@@ -27,7 +28,13 @@ const columnsWhere = (specification: Specification, holds: (entry: Specification
 
 const settings: readonly Setting[] = [
   ['Data', ({ data }) => (data.sha256 === null ? 'any file' : `${data.sha256.slice(0, 12)}…`)],
-  ['Outcome', ({ outcome }) => `${outcome.column}: good ${outcome.good.join(', ')}; bad ${outcome.bad.join(', ')}`],
+  [
+    'Outcome',
+    ({ outcome }) => {
+      const { good, bad } = outcomeWords(outcome);
+      return `${outcomeColumns(outcome).join(', ')}: good ${good}; bad ${bad}`;
+    },
+  ],
   ['Exclusions', ({ exclusions }) => exclusions.map(({ reason }) => reason).join('; ') || 'none'],
   ['Weight', ({ weight }) => weight?.column ?? 'none'],
   ['Penalty', penalty],

@@ -1,5 +1,6 @@
 import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import type { DraftContent, SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
+import { outcomeColumns } from '@tallystone/contracts/specification/outcome';
 import type { RowTest } from '@tallystone/contracts/specification/types';
 import type { Context } from '../../context';
 import type { SourceColumn } from '../../replay/source';
@@ -46,7 +47,7 @@ export async function carryOut(
 
 /** Every column that the head of a specification reads. */
 export function columnsOf(content: SampleDefinitionContent): Set<string> {
-  const names = new Set([content.outcome.column]);
+  const names = new Set(outcomeColumns(content.outcome));
   const ofTest = (test: RowTest): void => {
     if ('all' in test) test.all.forEach(ofTest);
     else if ('any' in test) test.any.forEach(ofTest);

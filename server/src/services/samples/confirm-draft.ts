@@ -12,6 +12,7 @@ import { Problem, conflict, invalid } from '../../problems/problem';
 import { storeAssignment } from '../../storage/assignmentStore';
 import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
+import { balanceOf, storeBalance } from './balance';
 import { carryOut } from './carry-out';
 import { type FoundDraft, findDraft, presentDraft } from './draft';
 import { findSample } from './find-sample';
@@ -73,6 +74,10 @@ export async function confirmDefinition(payload: { sampleId: string; revision: n
         : `${problems.length} things stand in the way; the first: ${problems[0].message}`;
     throw new Problem(422, 'not-confirmed', detail, { problems });
   }
+  const balance = await balanceOf(context, sample, content, answer.prepared, {
+    signal: run.signal,
+    onColumn: (done, count) => run.progress('comparing the partitions', 0.4 + (0.4 * done) / count),
+  });
   run.progress('storing', 0.8);
   const id = randomUUID();
   await run.finish(async (tx) => {
@@ -101,6 +106,7 @@ export async function confirmDefinition(payload: { sampleId: string; revision: n
       { transaction: tx },
     );
     await storeAssignment(context.sequelize, tx, id, prepared);
+    await storeBalance(context, tx, id, balance);
     await appendRecord(tx, {
       actor: await actorOf(run.run.personId, tx),
       action: 'sample.defined',

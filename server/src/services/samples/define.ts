@@ -4,11 +4,12 @@ import type {
   ColumnTest,
   DefinedColumn,
   DraftContent,
+  DraftOutcomeRule,
   ExclusionRule,
   SampleDefinitionContent,
 } from '@tallystone/contracts/samples/definition';
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
-import type { Exclusion, Partition } from '@tallystone/contracts/specification/types';
+import type { Exclusion, OutcomeDefinition, Partition } from '@tallystone/contracts/specification/types';
 import { thin } from '../../profiling/kind';
 
 export interface DefinedSample {
@@ -39,6 +40,7 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
     say('no-outcome', 'No column has the role of the outcome. Choose the one that says how the loan went.', {
       section: 'columns',
     });
+  else if (draft.outcome.rule) checkRuleOfOutcome(draft, draft.outcome.rule, outcome, profiles, say);
   else checkOutcome(draft, profiles.get(outcome.column), say);
   const decision = holder('decision');
   if (draft.declined && !decision)
@@ -56,7 +58,7 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
     content: {
       data: { sha256: sample.sha256, ...sample.reading },
       exclusions: draft.exclusions.map(exclusionOf),
-      outcome: { column: outcome.column, ...draft.outcome },
+      outcome: outcomeOf(draft.outcome, outcome.column),
       declined:
         draft.declined && decision
           ? { column: decision.column, values: draft.declined.values, method: 'none', bands: 10, uplift: 1.5 }
@@ -232,6 +234,38 @@ function checkRule(rule: ExclusionRule, place: number, profiles: ReadonlyMap<str
     if (profile.hashed && (test.in || test.notIn))
       say('kept-as-hashes', `${name} lists values of ${column}, which are kept as keyed hashes.`, at);
   });
+}
+
+/** The columns of a rule hold numbers, and are known after the decision only: none of them can be a characteristic. */
+function checkRuleOfOutcome(
+  draft: DraftContent,
+  { bad, indeterminate, monthsOnBook }: DraftOutcomeRule,
+  days: DefinedColumn,
+  profiles: ReadonlyMap<string, ColumnProfile>,
+  say: Say,
+): void {
+  const section = 'outcome';
+  if (indeterminate !== null && indeterminate >= bad)
+    say('rule-order', `Indeterminate begins at ${indeterminate} days and bad at ${bad}: indeterminate has to begin earlier.`, { section });
+  const numeric = (column: string, what: string): void => {
+    const profile = profiles.get(column);
+    if (!profile) say('no-such-column', `The file has no column ${column}.`, { section, column });
+    else if (profile.kind !== 'numeric')
+      say('not-numeric', `${column} holds no numbers as the file was read, and ${what} are numbers.`, { section, column });
+  };
+  numeric(days.column, 'days past due');
+  if (monthsOnBook === null) return;
+  const { column } = monthsOnBook;
+  numeric(column, 'months on book');
+  if (column === days.column) say('rule-columns', `${column} cannot hold days past due and months on book.`, { section, column });
+  else if (draft.columns.some((entry) => entry.column === column && entry.role === 'characteristic'))
+    say('leaks', `${column} is part of the outcome and cannot also be a characteristic: set it to not used.`, { section, column });
+}
+
+function outcomeOf({ rule, ...values }: DraftContent['outcome'], column: string): OutcomeDefinition {
+  if (!rule) return { column, ...values };
+  const { bad, indeterminate, missing, monthsOnBook } = rule;
+  return { daysPastDue: { column, bad, indeterminate, missing }, monthsOnBook };
 }
 
 const testOf = (test: ColumnTest): ColumnTest =>

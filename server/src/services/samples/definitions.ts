@@ -28,8 +28,11 @@ const select = `
 
 async function present(
   sequelize: Sequelize,
-  { counts: { result: _result, ...counts }, createdAt, ...row }: Row,
+  { counts: { result: _result, ...stored }, createdAt, ...row }: Row,
 ): Promise<Definition> {
+  // What was confirmed before a count was kept does not have it.
+  const { sensitivity = null, byRule = null } = stored as Partial<StoredCounts>;
+  const counts = { ...stored, sensitivity, byRule };
   const state = await outOfTimeState(sequelize, row.id);
   return { ...row, createdAt: createdAt.toISOString(), counts: state === 'covered' ? covered(counts) : counts };
 }

@@ -1,5 +1,6 @@
 import { HttpClient, type HttpResourceRef, httpResource } from '@angular/common/http';
 import { Injectable, inject } from '@angular/core';
+import type { PartitionBalance } from '@tallystone/contracts/samples/balance';
 import type { ColumnList, ColumnProfile, ColumnRole } from '@tallystone/contracts/samples/columns';
 import type {
   Definition,
@@ -51,6 +52,18 @@ export function columnsOf(modelId: () => string, sampleId: () => string): HttpRe
 
 export function definitionsOf(modelId: () => string, sampleId: () => string): HttpResourceRef<DefinitionList | undefined> {
   return httpResource<DefinitionList>(() => `${of(modelId(), sampleId())}/definitions`);
+}
+
+/** How each characteristic of a confirmed definition is spread by partition; nothing is asked while there is no definition. */
+export function balanceOf(
+  modelId: () => string,
+  sampleId: () => string,
+  definitionId: () => string | null,
+): HttpResourceRef<PartitionBalance | undefined> {
+  return httpResource<PartitionBalance>(() => {
+    const id = definitionId();
+    return id === null ? undefined : `${of(modelId(), sampleId())}/definitions/${id}/balance`;
+  });
 }
 
 /** Changes samples. Every method rejects with a Problem. */

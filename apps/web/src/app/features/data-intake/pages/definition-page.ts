@@ -17,7 +17,8 @@ import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { DraftStore } from '../data/draft-store';
-import { type ColumnProfile, Samples, columnsOf, definitionsOf, oneSample } from '../data/samples';
+import { type ColumnProfile, Samples, balanceOf, columnsOf, definitionsOf, oneSample } from '../data/samples';
+import { BalanceTable } from '../ui/balance-table';
 import { ExclusionList } from '../ui/exclusion-list';
 import { countsFinding } from '../ui/findings';
 import { OutcomeEditor } from '../ui/outcome-editor';
@@ -25,6 +26,7 @@ import { PartitionEditor } from '../ui/partition-editor';
 import { PartitionTable } from '../ui/partition-table';
 import { SampleSteps } from '../ui/sample-steps';
 import { SaveStateNote } from '../ui/save-state';
+import { SensitivityTable } from '../ui/sensitivity-table';
 import { WaterfallFigure } from '../ui/waterfall-figure';
 
 /** What the sample means: outcome, exclusions, partition, and the waterfall that they give; then confirmed for good. */
@@ -35,6 +37,7 @@ import { WaterfallFigure } from '../ui/waterfall-figure';
   imports: [
     RouterLink,
     MatButtonModule,
+    BalanceTable,
     DecisionNotice,
     ExclusionList,
     OutcomeEditor,
@@ -45,6 +48,7 @@ import { WaterfallFigure } from '../ui/waterfall-figure';
     RunProgress,
     SampleSteps,
     SaveStateNote,
+    SensitivityTable,
     WaterfallFigure,
   ],
   templateUrl: './definition-page.html',
@@ -84,6 +88,7 @@ export class DefinitionPage {
   );
   /** Shown instead of the draft until somebody works on another definition. */
   protected readonly confirmed = computed(() => (this.changing() ? null : this.latest()));
+  protected readonly balance = balanceOf(this.model, this.id, () => this.confirmed()?.id ?? null);
   protected readonly weight = computed(() => this.draft.content()?.columns.find(({ role }) => role === 'weight')?.column ?? null);
   protected readonly problems = computed(() => {
     const counted = this.draft.check()?.problems ?? [];
@@ -150,7 +155,21 @@ export class DefinitionPage {
         if (entry.column === column) return { ...entry, role: 'outcome' };
         return entry.role === 'outcome' ? { ...entry, role: 'not used', reason: 'Another column is the outcome.' } : entry;
       }),
-      outcome: { good: [], bad: [], indeterminate: [], excluded: [] },
+      outcome: { good: [], bad: [], indeterminate: [], excluded: [], ...(content.outcome.rule && { rule: content.outcome.rule }) },
+    }));
+  }
+
+  /** Months on book are known only after the decision: as part of the outcome the column is no characteristic any more. */
+  protected setOutcome(outcome: DraftContent['outcome']): void {
+    const months = outcome.rule?.monthsOnBook?.column;
+    this.draft.change((content) => ({
+      ...content,
+      outcome,
+      columns: content.columns.map((entry) =>
+        entry.column === months && entry.role === 'characteristic'
+          ? { ...entry, role: 'not used', reason: 'Months on book: part of the outcome.' }
+          : entry,
+      ),
     }));
   }
 

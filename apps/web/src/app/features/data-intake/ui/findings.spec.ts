@@ -1,6 +1,6 @@
 import type { DefinitionCounts } from '@tallystone/contracts/samples/definition';
 import { describe, expect, it } from 'vitest';
-import { badRateOut, countsFinding, plain, samplesFinding, waterfallFinding } from './findings';
+import { badRateOut, countsFinding, plain, ruleParts, samplesFinding, sensitivityFinding, waterfallFinding } from './findings';
 import { conditionOf, testWith, valueOf } from './exclusion-test';
 
 const counts: DefinitionCounts = {
@@ -15,6 +15,8 @@ const counts: DefinitionCounts = {
     outOfTime: { covered: false, rows: 0, goods: 0, bads: 0, indeterminates: 0, weight: 0, badRate: null },
   },
   declined: 0,
+  byRule: null,
+  sensitivity: [],
 };
 
 describe('findings of the sample pages', () => {
@@ -40,6 +42,34 @@ describe('findings of the sample pages', () => {
       '4.1',
       '12\u202f346',
       '0',
+    ]);
+  });
+  it('say what the indeterminates can make of the bad rate', () => {
+    const holdOut = { goods: 0, bads: 0, badRate: null };
+    const cases: DefinitionCounts['sensitivity'] = [
+      { indeterminates: 'as they are', development: { goods: 90, bads: 10, badRate: 0.1 }, holdOut },
+      { indeterminates: 'as good', development: { goods: 115, bads: 10, badRate: 0.08 }, holdOut },
+      { indeterminates: 'as bad', development: { goods: 90, bads: 35, badRate: 0.28 }, holdOut },
+    ];
+    const development = { ...counts.partitions.development, rows: 125, goods: 90, bads: 10, indeterminates: 25 };
+    expect(sensitivityFinding({ ...counts, partitions: { ...counts.partitions, development }, sensitivity: cases })).toBe(
+      'The bad rate of development is 10.0\u202f%; it would be 8.0\u202f% with every indeterminate good and 28.0\u202f% with every one bad (25 rows, 20.0\u202f% of development).',
+    );
+  });
+  it('list the parts of an outcome by rule in the order they are asked', () => {
+    const rule = { bad: 90, indeterminate: 30, missing: 'excluded', monthsOnBook: { column: 'months', least: 12 } } as const;
+    const given = { tooFewMonths: 4, missing: 1, bads: 10, indeterminates: 5, goods: 80, badRate: 10 / 90 };
+    expect(ruleParts(rule, 'dpd', given).map(({ label, means, rows }) => `${label}: ${means} ${rows}`)).toEqual([
+      'Excluded: months below 12 4',
+      'Excluded: missing 1',
+      'Bad: dpd of 90 or more 10',
+      'Indeterminate: dpd from 30 to below 90 5',
+      'Good: dpd below 30 80',
+    ]);
+    const short = ruleParts({ bad: 60, indeterminate: null, missing: 'refuse', monthsOnBook: null }, 'dpd', null);
+    expect(short.map(({ means, rows }) => [means, rows])).toEqual([
+      ['dpd of 60 or more', null],
+      ['dpd below 60', null],
     ]);
   });
   it('begin with what is to be done', () => {

@@ -1,5 +1,5 @@
 import type { ColumnList, ColumnProfile } from '@tallystone/contracts/samples/columns';
-import type { DefinitionCounts, WaterfallStep } from '@tallystone/contracts/samples/definition';
+import type { DefinitionCounts, DraftOutcomeRule, RuleCounts, WaterfallStep } from '@tallystone/contracts/samples/definition';
 import type { Preview } from '@tallystone/contracts/samples/reading';
 import type { SampleList } from '@tallystone/contracts/samples/schema';
 import { count, plural, share, significant, written } from '../../../ui/numbers';
@@ -105,4 +105,36 @@ export function countsFinding(counts: DefinitionCounts): string {
     outOfTime.rows > 0 ? `${count(outOfTime.rows)} out-of-time` : '',
   ].filter(Boolean);
   return `${count(development.rows)} of ${count(source)} rows are development${rate}${rest.length > 0 ? `; ${rest.join(' and ')}` : ''}.`;
+}
+
+/** What the indeterminates can make of the bad rate of development, from all of them good to all of them bad. */
+export function sensitivityFinding({ sensitivity, partitions }: DefinitionCounts): string {
+  const rate = (reading: string): number | null =>
+    sensitivity?.find(({ indeterminates }) => indeterminates === reading)?.development.badRate ?? null;
+  const { indeterminates, rows } = partitions.development;
+  const part = rows === 0 ? '' : `, ${share(indeterminates / rows)} of development`;
+  return `The bad rate of development is ${share(rate('as they are'))}; it would be ${share(rate('as good'))} with every indeterminate good and ${share(rate('as bad'))} with every one bad (${plural(indeterminates, 'row')}${part}).`;
+}
+
+/** One part of an outcome by rule; `rows` null while they are not counted. */
+export interface RulePart {
+  readonly key: string;
+  readonly label: string;
+  readonly means: string;
+  readonly rows: number | null;
+}
+
+/** The parts of an outcome by rule in the order they are asked: whoever is excluded is not looked at further. */
+export function ruleParts(rule: DraftOutcomeRule, days: string, counts: RuleCounts | null): RulePart[] {
+  const { bad, indeterminate, monthsOnBook, missing } = rule;
+  const part = (key: string, label: string, means: string, rows: number | undefined): RulePart => ({ key, label, means, rows: rows ?? null });
+  return [
+    ...(monthsOnBook ? [part('months', 'Excluded', `${monthsOnBook.column} below ${plain(monthsOnBook.least)}`, counts?.tooFewMonths)] : []),
+    ...(missing === 'excluded' ? [part('missing', 'Excluded', 'missing', counts?.missing)] : []),
+    part('bad', 'Bad', `${days} of ${plain(bad)} or more`, counts?.bads),
+    ...(indeterminate === null
+      ? []
+      : [part('indeterminate', 'Indeterminate', `${days} from ${plain(indeterminate)} to below ${plain(bad)}`, counts?.indeterminates)]),
+    part('good', 'Good', `${days} below ${plain(indeterminate ?? bad)}`, counts?.goods),
+  ];
 }

@@ -1,11 +1,15 @@
 import { ChangeDetectionStrategy, Component, computed, input, output } from '@angular/core';
 import { MatCheckboxModule } from '@angular/material/checkbox';
 import { MatFormFieldModule } from '@angular/material/form-field';
+import { MatRadioModule } from '@angular/material/radio';
 import { MatSelectModule } from '@angular/material/select';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
-import type { DraftContent, DraftOutcome } from '@tallystone/contracts/samples/definition';
+import type { DraftContent, DraftOutcome, DraftOutcomeRule, RuleCounts } from '@tallystone/contracts/samples/definition';
 import { count } from '../../../ui/numbers';
+import { OutcomeRuleEditor } from './outcome-rule-editor';
 import { type MappedValue, type Meaning, ValueMapping } from './value-mapping';
+
+type Valued = Exclude<keyof DraftOutcome, 'rule'>;
 
 const meanings: readonly Meaning[] = [
   { key: 'good', label: 'Good' },
@@ -18,17 +22,35 @@ const meanings: readonly Meaning[] = [
 @Component({
   selector: 'ts-outcome-editor',
   changeDetection: ChangeDetectionStrategy.OnPush,
-  imports: [MatCheckboxModule, MatFormFieldModule, MatSelectModule, ValueMapping],
+  imports: [MatCheckboxModule, MatFormFieldModule, MatRadioModule, MatSelectModule, OutcomeRuleEditor, ValueMapping],
   template: `
+    <mat-radio-group
+      aria-label="How the outcome is stated"
+      [value]="rule() === null ? 'values' : 'rule'"
+      [disabled]="!editable()"
+      (change)="chooseRule($event.value === 'rule')"
+    >
+      <mat-radio-button value="values">By the values of a column</mat-radio-button>
+      <mat-radio-button value="rule">By rule: days past due, months on book</mat-radio-button>
+    </mat-radio-group>
     <mat-form-field class="pick">
-      <mat-label>Outcome column</mat-label>
+      <mat-label>{{ rule() === null ? 'Outcome column' : 'Column of the days past due' }}</mat-label>
       <mat-select [value]="column()?.column ?? null" [disabled]="!editable()" (selectionChange)="columnChosen.emit($event.value)">
         @for (profile of candidates(); track profile.column) {
           <mat-option [value]="profile.column">{{ profile.column }}</mat-option>
         }
       </mat-select>
     </mat-form-field>
-    @if (column(); as profile) {
+    @if (rule(); as rule) {
+      <ts-outcome-rule-editor
+        [rule]="rule"
+        [days]="column()"
+        [profiles]="profiles()"
+        [counts]="ruleCounts()"
+        [editable]="editable()"
+        (changed)="setRule($event)"
+      />
+    } @else if (column(); as profile) {
       <ts-value-mapping
         label="What each outcome means"
         [values]="values()"
@@ -63,6 +85,9 @@ const meanings: readonly Meaning[] = [
       gap: 12px;
       grid-template-columns: minmax(0, 1fr);
     }
+    mat-radio-group {
+      display: grid;
+    }
     .pick {
       max-width: 320px;
     }
@@ -76,6 +101,8 @@ export class OutcomeEditor {
   readonly profiles = input.required<readonly ColumnProfile[]>();
   readonly column = input<ColumnProfile | null>(null);
   readonly decision = input<ColumnProfile | null>(null);
+  /** What the rule gives on the rows; null while it is not counted. */
+  readonly ruleCounts = input<RuleCounts | null>(null);
   readonly editable = input(false);
   readonly columnChosen = output<string>();
   readonly outcome = output<DraftOutcome>();
@@ -83,22 +110,36 @@ export class OutcomeEditor {
   protected readonly meanings = meanings;
   protected readonly count = count;
 
-  /** An outcome has a few values. */
-  protected readonly candidates = computed(() =>
-    this.profiles().filter(({ valuesComplete, distinct }) => valuesComplete && distinct > 0),
-  );
+  protected readonly rule = computed(() => this.content().outcome.rule ?? null);
+  /** An outcome has a few values; days past due are numbers. */
+  protected readonly candidates = computed(() => {
+    const byRule = this.rule() !== null;
+    return this.profiles().filter(({ valuesComplete, distinct, kind, hashed }) =>
+      byRule ? kind === 'numeric' && !hashed && distinct > 0 : valuesComplete && distinct > 0,
+    );
+  });
   protected readonly values = computed<MappedValue[]>(() => {
     const profile = this.column();
     if (!profile) return [];
     const { outcome } = this.content();
     const meaningOf = (value: string): string | null =>
-      meanings.map(({ key }) => key as keyof DraftOutcome).find((key) => outcome[key].includes(value)) ?? null;
+      meanings.map(({ key }) => key as Valued).find((key) => outcome[key].includes(value)) ?? null;
     return [...profile.mostFrequent, ...profile.missingTokens].map(({ value, count: rows }) => ({
       value,
       count: rows,
       meaning: meaningOf(value),
     }));
   });
+
+  /** Bad from 90 days past due, indeterminate from 30 until somebody says otherwise (common practice). */
+  protected chooseRule(byRule: boolean): void {
+    const { rule: _rule, ...values } = this.content().outcome;
+    this.outcome.emit(byRule ? { ...values, rule: { bad: 90, indeterminate: 30, missing: 'refuse', monthsOnBook: null } } : values);
+  }
+
+  protected setRule(rule: DraftOutcomeRule): void {
+    this.outcome.emit({ ...this.content().outcome, rule });
+  }
 
   protected map({ value, meaning }: { value: string; meaning: string }): void {
     const { outcome } = this.content();
@@ -109,7 +150,7 @@ export class OutcomeEditor {
       indeterminate: without(outcome.indeterminate),
       excluded: without(outcome.excluded),
     };
-    next[meaning as keyof DraftOutcome].push(value);
+    next[meaning as Valued].push(value);
     this.outcome.emit(next);
   }
 

@@ -1,0 +1,58 @@
+import type { CharacteristicBalance, PartitionBalance } from '@tallystone/contracts/samples/balance';
+import type { SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
+import type { Sequelize, Transaction } from 'sequelize';
+import type { Context } from '../../context';
+import { rows } from '../../database/sql';
+import type { Prepared } from '../../replay/types';
+import { openSample } from '../../storage/columnStore';
+import { runInThread } from '../../threads/run-in-thread';
+import type { FoundSample } from './find-sample';
+
+/**
+ * How each characteristic is spread in the partitions of a definition. One column is in memory at a time.
+ *
+ * @param onColumn called after each with how many are done, of how many
+ */
+export async function balanceOf(
+  context: Context,
+  sample: FoundSample,
+  content: SampleDefinitionContent,
+  prepared: Pick<Prepared, 'partition' | 'outcome'>,
+  options: { readonly signal: AbortSignal; readonly onColumn: (done: number, count: number) => void },
+): Promise<CharacteristicBalance[]> {
+  const characteristics = content.columns.filter(({ role }) => role === 'characteristic');
+  const found: CharacteristicBalance[] = [];
+  for (const column of characteristics) {
+    const source = (await openSample(context.sequelize, sample.id, [column.column])).column(column.column);
+    if (!source) throw new Error(`The sample has no column ${column.column}`);
+    const { partition, outcome } = prepared;
+    found.push(await runInThread('sample.balance', { column, source, data: content.data, prepared: { partition, outcome } }, { signal: options.signal }));
+    options.onColumn(found.length, characteristics.length);
+  }
+  return found;
+}
+
+export async function storeBalance(
+  context: Context,
+  tx: Transaction,
+  definitionId: string,
+  characteristics: readonly CharacteristicBalance[],
+): Promise<void> {
+  await rows(
+    context.sequelize,
+    'INSERT INTO sample_balances (definition_id, characteristics) VALUES ($1, $2::jsonb) RETURNING definition_id',
+    [definitionId, JSON.stringify(characteristics)],
+    tx,
+  );
+}
+
+/** Null where this sample has no such definition. */
+export async function readBalance(sequelize: Sequelize, sample: FoundSample, definitionId: string): Promise<PartitionBalance | null> {
+  const [found] = await rows<PartitionBalance>(
+    sequelize,
+    `SELECT d.id AS "definitionId", b.characteristics FROM sample_definitions d LEFT JOIN sample_balances b ON b.definition_id = d.id
+      WHERE d.sample_id = $1 AND d.id = $2`,
+    [sample.id, definitionId],
+  );
+  return found ?? null;
+}
