@@ -1,9 +1,10 @@
 import { z } from 'zod';
+import { DeclinedMethod } from '../fits/schema';
 
 const number = z.number();
 const nullable = z.number().nullable();
 
-/** Two to five fits of one model, comma-separated, at the penalty chosen for each (the one-standard-error rule where nothing is chosen). */
+/** Two to five fits of one model, comma-separated; the accepts-only fit of one with inference joins in by itself. At the penalty chosen for each (the one-standard-error rule where nothing is chosen). */
 export const ComparisonQuery = z.strictObject({
   fits: z
     .string()
@@ -33,6 +34,8 @@ export const ComparedFit = z.object({
   mixing: number,
   chosenBy: z.enum(['minimum', 'one-standard-error', 'by hand', 'not chosen']),
   kept: z.int(),
+  /** Whether declined applicants entered the fit, and how. */
+  inference: DeclinedMethod,
   development: ComparedMetrics.nullable(),
   holdOut: ComparedMetrics.nullable(),
   outOfTime: ComparedMetrics.nullable(),
@@ -64,6 +67,37 @@ export const PairedTest = z.object({
   pValue: nullable,
 });
 
+/** A score that exists already, on the rows that have it. Like every score it is read as higher means safer. */
+export const IncumbentFigures = z.object({
+  rows: z.int(),
+  /** Rows with a known outcome that have no such score: they are left out of its figures and of its test. */
+  missing: z.int(),
+  bads: number,
+  auc: number,
+  aucLower: nullable,
+  aucUpper: nullable,
+  ks: number,
+  /** Each fit less the incumbent on these rows, in the order of the fits; DeLong's paired test. */
+  tests: z.array(z.object({ fitId: z.uuid(), difference: number, lower: nullable, upper: nullable, pValue: nullable })),
+});
+export const ComparedIncumbent = z.object({
+  column: z.string(),
+  development: IncumbentFigures.nullable(),
+  holdOut: IncumbentFigures.nullable(),
+  outOfTime: IncumbentFigures.nullable(),
+});
+
+/** Hold-out, one segment at a time. `auc` in the order of the fits; null where the segment has too few goods or bads to be read. */
+export const ComparedSegment = z.object({
+  column: z.string(),
+  value: z.string(),
+  rows: z.int(),
+  bads: z.int().nullable(),
+  auc: z.array(nullable),
+});
+/** Fewest goods and fewest bads of a segment that is read. */
+export const fewestInSegment = 20;
+
 export const Comparison = z
   .object({
     fits: z.array(ComparedFit),
@@ -74,6 +108,9 @@ export const Comparison = z
     settings: z.array(DifferingSetting),
     characteristics: z.array(ComparedCharacteristic),
     tests: z.array(PairedTest),
+    /** Of the first fit's sample. Empty where no column has the role, or where the fits see other rows. */
+    incumbents: z.array(ComparedIncumbent),
+    segments: z.array(ComparedSegment),
   })
   .meta({ id: 'Comparison' });
 
@@ -82,3 +119,6 @@ export type ComparedFit = z.infer<typeof ComparedFit>;
 export type ComparedCharacteristic = z.infer<typeof ComparedCharacteristic>;
 export type ComparedMetrics = z.infer<typeof ComparedMetrics>;
 export type PairedTest = z.infer<typeof PairedTest>;
+export type ComparedIncumbent = z.infer<typeof ComparedIncumbent>;
+export type IncumbentFigures = z.infer<typeof IncumbentFigures>;
+export type ComparedSegment = z.infer<typeof ComparedSegment>;

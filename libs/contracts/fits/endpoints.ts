@@ -1,5 +1,5 @@
 import { defineEndpoint } from '../endpoint';
-import { Fit, FitList, FitPath, NewChoice, NewFit, ofFit, ofModel } from './schema';
+import { Fit, FitBasis, FitList, FitPath, NewChoice, NewFit, ofDefinition, ofFit, ofModel } from './schema';
 
 export const listFits = defineEndpoint({
   method: 'GET',
@@ -42,4 +42,12 @@ export const choosePenalty = defineEndpoint({
   params: ofFit,
   body: NewChoice,
   response: Fit,
+});
+
+export const readFitBasis = defineEndpoint({
+  method: 'GET',
+  path: '/api/sample-definitions/:definitionId/fit-basis',
+  summary: 'What a fit on this definition can draw on: weight, group key, declined applicants',
+  params: ofDefinition,
+  response: FitBasis,
 });

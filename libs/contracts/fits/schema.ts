@@ -34,6 +34,31 @@ export const CharacteristicTreatment = z
 
 export const FoldClassing = z.enum(['once', 'woe', 'cuts']);
 
+export const declinedMethods = ['none', 'reweighting', 'parcelling', 'fuzzy'] as const;
+export const DeclinedMethod = z.enum(declinedMethods);
+export type DeclinedMethod = z.infer<typeof DeclinedMethod>;
+
+/**
+ * What declined applicants contribute to WOE and fit, never to a metric. The assumptions behind every method but "none" cannot be tested on accepted
+ * applicants, so that a fit with one has the accepts-only fit beside it.
+ */
+export const DeclinedSettings = z
+  .strictObject({
+    method: DeclinedMethod.default('none'),
+    /** Score bands of parcelling. */
+    bands: z.int().min(2, 'At least 2 bands').max(100, 'At most 100 bands').default(10),
+    /** Factor on the bad rate of a band in parcelling. */
+    uplift: z.number().positive('More than 0').max(20, 'At most 20').default(1.5),
+    reason: Reason.default(''),
+  })
+  .refine((entry) => entry.method === 'none' || entry.reason.length > 0, { path: ['reason'], message: 'Say why declined applicants are inferred' });
+
+/** The bad rate of the population, where the sample was drawn with another one: moves the intercept and nothing else. */
+export const PriorCorrection = z.strictObject({
+  populationBadRate: z.number().gt(0, 'More than 0').lt(1, 'Less than 1'),
+  reason: Reason.min(1, 'Say where the bad rate of the population comes from'),
+});
+
 /** The settings of one fit over a whole penalty path. Names are those of the specification. */
 export const FitSettings = z.strictObject({
   name: z.string().trim().min(1, 'Give the fit a name').max(120),
@@ -59,6 +84,8 @@ export const FitSettings = z.strictObject({
   woe: z
     .strictObject({ smoothing: z.number().min(0).max(10).default(0.5), when: z.enum(['zero-cell', 'always', 'never']).default('zero-cell') })
     .default({ smoothing: 0.5, when: 'zero-cell' }),
+  declined: DeclinedSettings.default({ method: 'none', bands: 10, uplift: 1.5, reason: '' }),
+  priorCorrection: PriorCorrection.nullable().default(null),
   characteristics: z
     .array(CharacteristicTreatment)
     .max(1000)
@@ -102,6 +129,9 @@ export const FitSummary = z.object({
   binningName: z.string(),
   definitionId: z.uuid(),
   mixing: number,
+  inference: DeclinedMethod,
+  /** The fit on accepted applicants alone that stands beside a fit with inference. */
+  acceptsOnlyId: z.uuid().nullable(),
   /** How many characteristics took part. */
   characteristics: z.int(),
   choice: FitChoice.nullable(),
@@ -146,6 +176,23 @@ export const FittedCharacteristic = z.object({
   bins: z.array(FitBin),
 });
 
+/** What a prior correction did: corrected intercept = intercept of the fit + shift, in ln(good:bad). */
+export const InterceptShift = z.object({ sampleBadRate: number, populationBadRate: number, shift: number });
+
+/** What a fit on a sample's definition can draw on beside the characteristics. */
+export const FitBasis = z
+  .object({
+    definitionId: z.uuid(),
+    weight: z.string().nullable(),
+    groupKey: z.string().nullable(),
+    /** Who was declined, by which column; null where nobody is. */
+    declined: z.object({ column: z.string(), values: z.array(z.string()), rows: z.int() }).nullable(),
+    /** Unweighted, of the goods and bads of development. */
+    badRate: nullable,
+  })
+  .meta({ id: 'FitBasis' });
+export type FitBasis = z.infer<typeof FitBasis>;
+
 /**
  * The whole path, evaluated at every penalty, so that moving along it asks nothing of the server. All lists run over the k penalties,
  * largest first; coefficients[i] runs over the characteristics, in the orientation ln(good:bad).
@@ -163,6 +210,8 @@ export const FitPath = z
     status: z.array(z.enum(['converged', 'iteration-limit', 'separation'])),
     largestLambda: number,
     stoppedEarly: z.boolean(),
+    /** Intercepts, points and calibration are after it; null where none is stated. */
+    priorCorrection: InterceptShift.nullable(),
     characteristics: z.array(FittedCharacteristic),
     crossValidation: z.object({
       mean: z.array(number),
@@ -191,6 +240,7 @@ export const FitPath = z
 
 export const ofModel = z.strictObject({ modelId: z.uuid() });
 export const ofFit = z.strictObject({ fitId: z.uuid() });
+export const ofDefinition = z.strictObject({ definitionId: z.uuid() });
 
 export type FitSettings = z.infer<typeof FitSettings>;
 export type CharacteristicTreatment = z.infer<typeof CharacteristicTreatment>;

@@ -18,7 +18,7 @@ export const columnRoles = [
 export const ColumnRole = z.enum(columnRoles);
 export type ColumnRole = z.infer<typeof ColumnRole>;
 /** Roles that one column of a sample has at most. */
-export const singleRoles: readonly ColumnRole[] = ['outcome', 'decision', 'weight', 'partition', 'application date'];
+export const singleRoles: readonly ColumnRole[] = ['outcome', 'decision', 'weight', 'partition', 'application date', 'group key'];
 
 export const columnFlags = [
   'all-missing',

@@ -149,6 +149,8 @@ const partitionBySeed = checked<PartitionBySeed>(
   z.strictObject({
     seed,
     holdOutShare: finite.min(0).lt(1),
+    // No default is written in: a specification from before this key keeps its fingerprint.
+    groups: columnName.optional(),
     outOfTime: z
       .strictObject({ column: columnName, from: isoDate.nullable().default(null), to: isoDate.nullable().default(null) })
       .nullable()

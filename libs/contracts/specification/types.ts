@@ -92,6 +92,8 @@ export interface PartitionBySeed {
   seed: number;
   /** Share of goods and of bads, each rounded, that become hold-out. */
   holdOutShare: number;
+  /** A column whose values stay together, in development or in hold-out. An optional extension of the format. */
+  groups?: string | undefined;
   /** Rows whose ISO date lies in [from, to], both ends included, null = open. */
   outOfTime: { column: string; from: string | null; to: string | null } | null;
 }

@@ -14,6 +14,8 @@ export class Fit extends Model<InferAttributes<Fit>, InferCreationAttributes<Fit
   declare specification: string;
   declare specificationSha256: string;
   declare characteristics: number;
+  /** The fit on accepted applicants alone beside one with inference. */
+  declare acceptsOnlyId: CreationOptional<string | null>;
   declare runId: CreationOptional<string | null>;
   declare revision: CreationOptional<number>;
   declare createdAt: CreationOptional<Date>;
@@ -61,6 +63,7 @@ export function defineFit(sequelize: Sequelize): void {
       specification: DataTypes.TEXT,
       specificationSha256: { type: DataTypes.TEXT, field: 'specification_sha256' },
       characteristics: DataTypes.INTEGER,
+      acceptsOnlyId: DataTypes.UUID,
       runId: DataTypes.UUID,
       revision: DataTypes.INTEGER,
       createdAt: DataTypes.DATE,

@@ -6,7 +6,7 @@ import { BAD, DEVELOPMENT, GOOD, HOLD_OUT, NO_OUTCOME, OUT, OUT_OF_TIME } from '
 
 /**
  * Splits the rows that have an outcome (goods, bads, indeterminates, declined) into development, hold-out and out-of-time.
- * By seed, indeterminate and declined rows that are not out-of-time stay in development: only goods and bads are drawn.
+ * By seed, indeterminate and declined rows that are not out-of-time stay in development: only goods and bads are drawn, or whole groups.
  */
 export function assignPartition(
   spec: Specification,
@@ -53,12 +53,59 @@ function bySeed(partition: PartitionBySeed, columns: Columns, outcome: Uint8Arra
     assigned[row] = isOutOfTime?.(row) === true ? OUT_OF_TIME : DEVELOPMENT;
     if (assigned[row] === DEVELOPMENT) drawn[outcome[row]]?.push(row);
   }
+  if (partition.groups !== undefined) {
+    drawGroups(partition, partition.groups, columns, outcome, assigned, problems);
+    return assigned;
+  }
   for (const rows of [drawn[GOOD], drawn[BAD]]) {
     const order = orderByKey(rows.length, (index) => `${partition.seed}:${rows[index] + 1}`);
     const count = Math.round(partition.holdOutShare * rows.length);
     for (let place = 0; place < count; place++) assigned[rows[order[place]]] = HOLD_OUT;
   }
   return assigned;
+}
+
+/**
+ * Whole groups become hold-out, in the order of SHA-256 of `seed:value`, as long as hold-out has fewer goods and bads than its share of them. Whoever is in
+ * such a group goes with it, the indeterminate and the declined too; out-of-time stays what its date makes it.
+ */
+function drawGroups(
+  { seed, holdOutShare }: PartitionBySeed,
+  name: string,
+  columns: Columns,
+  outcome: Uint8Array,
+  assigned: Uint8Array,
+  problems: ReplayProblem[],
+): void {
+  const column = columns.text(name);
+  if (column === null) return;
+  const { codes, texts } = column;
+  const known = new Float64Array(texts.length);
+  const present = new Set<number>();
+  const faults = new ValueCounts();
+  let total = 0;
+  for (let row = 0; row < assigned.length; row++) {
+    if (assigned[row] !== DEVELOPMENT) continue;
+    const code = codes[row];
+    if (columns.isMissing(texts[code])) faults.add(texts[code]);
+    present.add(code);
+    if (outcome[row] !== GOOD && outcome[row] !== BAD) continue;
+    known[code]++;
+    total++;
+  }
+  const problem = faults.problem('missing-group', name, (listed, rows) => `${rows} row${rows === 1 ? ' has' : 's have'} no group in "${name}": ${listed}.`);
+  if (problem !== null) problems.push(problem);
+  // Groups are first put in order of their value, so that the order of rows in the file can never matter.
+  const groups = [...present].sort((a, b) => (texts[a] < texts[b] ? -1 : 1));
+  const wanted = Math.round(holdOutShare * total);
+  const held = new Set<number>();
+  let taken = 0;
+  for (const index of orderByKey(groups.length, (place) => `${seed}:${texts[groups[place]]}`)) {
+    if (taken >= wanted) break;
+    held.add(groups[index]);
+    taken += known[groups[index]];
+  }
+  for (let row = 0; row < assigned.length; row++) if (assigned[row] === DEVELOPMENT && held.has(codes[row])) assigned[row] = HOLD_OUT;
 }
 
 function outOfTime(

@@ -68,7 +68,10 @@ export function columnsRead(spec: Specification): { all: string[]; numbersOnly: 
   spec.exclusions.forEach(visit);
   if (spec.declined !== null) text.add(spec.declined.column);
   if ('column' in spec.partition) text.add(spec.partition.column);
-  else if (spec.partition.outOfTime !== null) text.add(spec.partition.outOfTime.column);
+  else {
+    if (spec.partition.outOfTime !== null) text.add(spec.partition.outOfTime.column);
+    if (spec.partition.groups !== undefined) text.add(spec.partition.groups);
+  }
   const { folds } = spec.fit;
   if (folds !== null) {
     if ('column' in folds) text.add(folds.column);

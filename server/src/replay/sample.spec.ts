@@ -176,6 +176,38 @@ describe('outcome, weight and partition', () => {
   });
 });
 
+describe('hold-out by groups', () => {
+  const spec = specificationOf({
+    declined: { column: 'decision', values: ['declined'], method: 'none' },
+    partition: { seed: 7, holdOutShare: 0.3, groups: 'branch', outOfTime: { column: 'applied_on', from: '2025-11-01', to: null } },
+  });
+
+  it('keeps a group in one partition, whole, in the order of SHA-256 of seed:value', () => {
+    const { partition, outcome } = prepare(spec, source);
+    const rows = Array.from(partition.keys()).filter((row) => partition[row] === DEVELOPMENT || partition[row] === HOLD_OUT);
+    const known = (row: number): boolean => outcome[row] <= GOOD;
+    const wanted = Math.round(0.3 * rows.filter(known).length);
+    const names = [...new Set(rows.map((row) => sample['branch'][row]))].sort((a, b) => (sha(`7:${a}`) < sha(`7:${b}`) ? -1 : 1));
+    const held = new Set<string>();
+    let taken = 0;
+    for (const name of names) {
+      if (taken >= wanted) break;
+      held.add(name);
+      taken += rows.filter((row) => known(row) && sample['branch'][row] === name).length;
+    }
+    expect(held.size).toBeGreaterThan(3);
+    for (const row of rows) expect(partition[row] === HOLD_OUT, sample['branch'][row]).toBe(held.has(sample['branch'][row]));
+    // Declined and indeterminate rows go with their group.
+    expect(rows.some((row) => !known(row) && partition[row] === HOLD_OUT)).toBe(true);
+    expect(taken).toBeGreaterThanOrEqual(wanted);
+  });
+
+  it('asks for a group in every row that is drawn from', () => {
+    const branch = sample['branch'].map((text, row) => (row < 3 ? '' : text));
+    expect(problemsOf(() => prepare(spec, sourceOf({ ...sample, branch })))[0]).toMatchObject({ code: 'missing-group', where: { column: 'branch' } });
+  });
+});
+
 describe('folds', () => {
   const foldsOf = (folds: object, more: object = {}) =>
     prepare(specificationOf({ fit: { mixing: 1, lambda: { value: 0.01 }, folds }, ...more }), source);

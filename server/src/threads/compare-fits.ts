@@ -6,6 +6,7 @@ import { codeCharacteristics } from '../replay/coding';
 import { evaluateFit, evaluatorOf } from '../replay/evaluate';
 import { prepare } from '../replay/prepare';
 import type { SourceColumn } from '../replay/source';
+import { type OtherColumns, type ScoredRows, type SegmentFigures, incumbentFigures, segmentFigures } from './compare-others';
 import type { Task } from './task';
 
 /** One fit at the penalty it is compared at; `woe` by bin in the order of its characteristics, as they were fitted. */
@@ -26,6 +27,9 @@ export interface ComparedFitFigures {
 
 export interface CompareAnswer {
   readonly sameRows: boolean;
+  /** Empty where the fits see other rows. */
+  readonly incumbents: readonly { readonly column: string; readonly figures: Readonly<Record<PartitionName, ReturnType<typeof incumbentFigures>>> }[];
+  readonly segments: readonly SegmentFigures[];
   readonly fits: readonly ComparedFitFigures[];
 }
 
@@ -33,12 +37,20 @@ export interface CompareAnswer {
  * Scores every partition by each fit and holds them against the first on the same rows. DeLong, DeLong and Clarke-Pearson 1988, paired; on
  * development the difference has no p-value, because both fits have seen those outcomes.
  */
-export const compareFits: Task<{ fits: readonly FitToCompare[]; partitions: readonly PartitionName[] }, CompareAnswer> = ({ fits, partitions }) => {
+export const compareFits: Task<{ fits: readonly FitToCompare[]; partitions: readonly PartitionName[]; others: OtherColumns }, CompareAnswer> = ({ fits, partitions, others }) => {
   const scored = fits.map((fit) => score(fit, partitions));
   const [first] = scored;
   const sameRows = scored.every((other) => partitions.every((name) => sameOutcomes(first[name], other[name])));
+  const on = (name: PartitionName): ScoredRows[] => scored.map((own) => own[name]);
   return {
     sameRows,
+    incumbents: sameRows
+      ? [...others.incumbents.keys()].map((column) => ({
+          column,
+          figures: byPartition((name) => (partitions.includes(name) ? incumbentFigures(column, others, on(name), name) : null)),
+        }))
+      : [],
+    segments: sameRows ? [...others.segments.keys()].flatMap((column) => segmentFigures(column, others, on('holdOut'))) : [],
     fits: scored.map((own, place) => ({
       metrics: byPartition((name) => (partitions.includes(name) ? metricsOf(own[name].eta, own[name].outcome) : null)),
       paired:
@@ -47,13 +59,7 @@ export const compareFits: Task<{ fits: readonly FitToCompare[]; partitions: read
   };
 };
 
-interface Scored {
-  readonly eta: Float64Array;
-  readonly outcome: Uint8Array;
-  readonly rows: Uint32Array;
-}
-
-function score(fit: FitToCompare, partitions: readonly PartitionName[]): Record<PartitionName, Scored> {
+function score(fit: FitToCompare, partitions: readonly PartitionName[]): Record<PartitionName, ScoredRows> {
   const { specification } = fit;
   const source = { rows: fit.rows, column: (name: string) => fit.columns.get(name) };
   const prepared = prepare(specification, source);
@@ -76,7 +82,7 @@ const byPartition = <T>(make: (name: PartitionName) => T): Record<PartitionName,
   outOfTime: make('outOfTime'),
 });
 
-function sameOutcomes(a: Scored, b: Scored): boolean {
+function sameOutcomes(a: ScoredRows, b: ScoredRows): boolean {
   return a.rows.length === b.rows.length && a.rows.every((row, place) => row === b.rows[place] && a.outcome[place] === b.outcome[place]);
 }
 

@@ -1,10 +1,11 @@
-import { delong } from '@tallystone/numeric';
+import { delong, priorCorrectedIntercept } from '@tallystone/numeric';
 import type { FitPath, PenaltyMetrics, Treatment } from '@tallystone/contracts/fits/schema';
 import type { PartitionName } from '@tallystone/contracts/result/types';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import { codeCharacteristics } from '../replay/coding';
 import { type Evaluator, PARTITION_NAMES, evaluateFit, evaluatorOf } from '../replay/evaluate';
 import { type TrainedPath, keptOf, trainPaths } from '../replay/fit';
+import { badRate } from '../replay/fit-rows';
 import { prepare } from '../replay/prepare';
 import { ReplayError, type ReplayProblem } from '../replay/problems';
 import type { SourceColumn } from '../replay/source';
@@ -63,23 +64,32 @@ export const fitPenaltyPath: Task<FitPathPayload, FitPathAnswer> = ({ specificat
       },
     });
     const evaluator = evaluatorOf(specification, prepared, coded, trained.tables);
+    const correction = correctionOf(specification, trained);
     const metrics: Record<PartitionName, Metrics> = { development: [], holdOut: [], outOfTime: [] };
     trained.fits.forEach((fit, index) => {
       goOn();
       progress('Evaluating every penalty', shareOf.path + shareOf.folds + ((1 - shareOf.path - shareOf.folds) * index) / trained.fits.length);
-      const evaluation = evaluateFit(evaluator, trained.terms, fit, { figures: 'path' });
+      const evaluation = evaluateFit(evaluator, trained.terms, { ...fit, intercept: fit.intercept + (correction?.shift ?? 0) }, { figures: 'path' });
       for (const name of PARTITION_NAMES) {
         const measured = evaluation.metrics[name];
         metrics[name].push(measured && penaltyMetrics(measured, evaluation.scores[name].scores, evaluator.partitions[name].outcome));
       }
     });
     const kept = trained.fits.map((fit) => keptOf(fit, trained.terms, coded).filter(Boolean).length);
-    return { problems: null, path: pathOf(specification, trained, evaluator, kept, treatments), metrics };
+    return { problems: null, path: pathOf(specification, trained, evaluator, kept, treatments, correction), metrics };
   } catch (error) {
     if (error instanceof ReplayError) return { problems: error.problems };
     throw error;
   }
 };
+
+/** The same for every penalty: it depends on the rows alone. Applied as the replay does it (`adjusted`), after the fit. */
+function correctionOf({ priorCorrection }: Specification, { fitRows }: TrainedPath): FitPath['priorCorrection'] {
+  if (priorCorrection === null) return null;
+  const sampleBadRate = badRate(fitRows);
+  const { populationBadRate } = priorCorrection;
+  return { sampleBadRate, populationBadRate, shift: priorCorrectedIntercept(0, sampleBadRate, populationBadRate) };
+}
 
 function penaltyMetrics(
   measured: { auc: number; ks: number; brier: number; calibrationInTheLarge: number | null; calibrationSlope: number | null },
@@ -108,6 +118,7 @@ function pathOf(
   evaluator: Evaluator,
   kept: number[],
   treatments: ReadonlyMap<string, Treatment>,
+  correction: FitPath['priorCorrection'],
 ): Extract<FitPathAnswer, { problems: null }>['path'] {
   const validated = trained.crossValidation;
   const { folds } = specification.fit;
@@ -116,7 +127,7 @@ function pathOf(
   const places = specification.characteristics.map((_, index) => trained.terms.findIndex((term) => term.characteristic === index));
   return {
     lambdas: trained.fits.map((fit) => fit.lambda),
-    intercepts: trained.fits.map((fit) => fit.intercept),
+    intercepts: trained.fits.map((fit) => fit.intercept + (correction?.shift ?? 0)),
     coefficients: trained.fits.map((fit) => places.map((place) => plain(fit.coefficients[place]))),
     kept,
     deviance: trained.fits.map((fit) => fit.deviance),
@@ -126,6 +137,7 @@ function pathOf(
     status: trained.fits.map((fit) => fit.status),
     largestLambda: trained.fits[0].lambda,
     stoppedEarly: trained.stoppedEarly,
+    priorCorrection: correction,
     characteristics: specification.characteristics.map(({ column, kind }, index) => {
       const table = trained.tables[index];
       const { bins } = evaluator.coded.characteristics[index];

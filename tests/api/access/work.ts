@@ -28,6 +28,7 @@ export const fitRows: readonly AccessRow[] = [
     ...readsModel('GET /api/models/:modelId/comparison'),
     query: ({ fitId, secondFitId }) => `fits=${fitId},${secondFitId}`,
   },
+  readsModel('GET /api/sample-definitions/:definitionId/fit-basis'),
   readsModel('GET /api/fits/:fitId'),
   readsModel('GET /api/fits/:fitId/path'),
   developsModel('PUT /api/fits/:fitId/choice'),

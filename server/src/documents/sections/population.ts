@@ -84,7 +84,8 @@ function writePartitions(writer: Writer): void {
   const { partition } = input.specification;
   writer.text(
     'seed' in partition
-      ? `Goods and bads were split separately with seed ${partition.seed}; a share of ${percent(partition.holdOutShare)} became hold-out. ` +
+      ? `${partition.groups === undefined ? 'Goods and bads were split separately' : 'Whole groups were drawn'} with seed ${partition.seed}; a share of ${percent(partition.holdOutShare)} became hold-out. ` +
+          (partition.groups === undefined ? '' : `Rows of one ${partition.groups} were kept together. `) +
           (partition.outOfTime === null
             ? 'No out-of-time period is stated.'
             : `Out-of-time: ${partition.outOfTime.column} from ${partition.outOfTime.from ?? 'the beginning'} to ${partition.outOfTime.to ?? 'the end'}.`)

@@ -1,11 +1,14 @@
-import { choosePenalty as choosePenaltyEndpoint, listFits, readFit, readFitPath, startFit as startFitEndpoint } from '@tallystone/contracts/fits/endpoints';
+import { choosePenalty as choosePenaltyEndpoint, listFits, readFit, readFitBasis as readFitBasisEndpoint, readFitPath, startFit as startFitEndpoint } from '@tallystone/contracts/fits/endpoints';
 import { canChoosePenalty, canListFits, canReadFit, canStartFit } from '../../policies/fits';
 import { choosePenalty } from '../../services/fits/choose-penalty';
 import { findFit, findFits } from '../../services/fits/find-fit';
 import { presentFit, presentFitSummary } from '../../services/fits/present-fit';
 import { readPath } from '../../services/fits/read-path';
 import { startFit } from '../../services/fits/start-fit';
+import { notFound } from '../../problems/problem';
+import { readFitBasis } from '../../services/fits/fit-basis';
 import { findModel } from '../../services/models/find-model';
+import { findCovered } from '../../services/out-of-time/cover';
 import { type Route, defineRoute } from '../http/route';
 
 export const fitRoutes: readonly Route[] = [
@@ -43,6 +46,16 @@ export const fitRoutes: readonly Route[] = [
     find: ({ context, params, tx }) => findFit(context.sequelize, params.fitId, tx),
     authorise: ({ person, subject }) => canReadFit(person, subject),
     act: ({ context, subject }) => readPath(context.sequelize, subject),
+  }),
+  defineRoute(readFitBasisEndpoint, {
+    access: 'signed-in',
+    find: ({ context, params, tx }) => findCovered(context.sequelize, params.definitionId, tx),
+    authorise: ({ person, subject }) => canListFits(person, subject.model),
+    async act({ context, params }) {
+      const basis = await readFitBasis(context.sequelize, params.definitionId);
+      if (!basis) throw notFound();
+      return basis;
+    },
   }),
   defineRoute(choosePenaltyEndpoint, {
     access: 'signed-in',

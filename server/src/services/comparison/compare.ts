@@ -1,13 +1,17 @@
 import type { ComparedCharacteristic, ComparedFit, Comparison, PairedTest } from '@tallystone/contracts/comparison/schema';
 import { problemCodes } from '@tallystone/contracts/problems/codes';
+import type { ColumnRole } from '@tallystone/contracts/samples/columns';
 import type { PartitionName } from '@tallystone/contracts/result/types';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import { scaleToPoints } from '@tallystone/numeric';
 import canonicalize from 'canonicalize';
 import { Op, type Sequelize } from 'sequelize';
 import { Fit, FittedPath, type StoredPath } from '../../models/fit';
+import type { SourceColumn } from '../../replay/source';
+import { openSample } from '../../storage/columnStore';
 import { Problem, notFound } from '../../problems/problem';
 import type { ComparedFitFigures } from '../../threads/compare-fits';
+import type { OtherColumns } from '../../threads/compare-others';
 import { runInThread } from '../../threads/run-in-thread';
 import { type FoundFit, findFits } from '../fits/find-fit';
 import { outOfTimeState } from '../out-of-time/cover';
@@ -31,7 +35,7 @@ interface Side {
  */
 export async function compare(sequelize: Sequelize, modelId: string, ids: readonly string[]): Promise<Comparison> {
   const all = new Map((await findFits(sequelize, modelId)).map((fit) => [fit.id, fit]));
-  const fits = ids.map((id) => all.get(id));
+  const fits = withAcceptsOnly(ids, all).map((id) => all.get(id));
   if (!fits.every((fit) => fit !== undefined)) throw notFound();
   const waiting = fits.filter((fit) => fit.state !== 'ready');
   if (waiting.length > 0) {
@@ -43,7 +47,8 @@ export async function compare(sequelize: Sequelize, modelId: string, ids: readon
   const states = await Promise.all(fits.map((fit) => outOfTimeState(sequelize, fit.definitionId)));
   const state = states.every((one) => one === 'none') ? 'none' : states.every((one) => one === 'opened') ? 'opened' : 'covered';
   const partitions: PartitionName[] = state === 'opened' ? ['development', 'holdOut', 'outOfTime'] : ['development', 'holdOut'];
-  const figures = await runInThread('fit.compare', { fits: await Promise.all(sides.map((side) => toScore(sequelize, side))), partitions });
+  const others = await otherColumns(sequelize, fits[0]);
+  const figures = await runInThread('fit.compare', { fits: await Promise.all(sides.map((side) => toScore(sequelize, side))), partitions, others });
   const note = figures.sameRows ? null : 'The fits do not see the same rows in the same partitions: figures stand side by side, but no difference is tested.';
   return {
     fits: sides.map((side, place) => presentSide(side, figures.fits[place])),
@@ -53,7 +58,18 @@ export async function compare(sequelize: Sequelize, modelId: string, ids: readon
     settings: differingSettings(sides.map(({ specification }) => specification)),
     characteristics: comparedCharacteristics(sides),
     tests: testsOf(sides, figures.fits),
+    incumbents: figures.incumbents.map(({ column, figures: by }) => {
+      const named = (one: (typeof by)[PartitionName]) => one && { ...one, tests: one.tests.map((test, place) => ({ fitId: sides[place].fit.id, ...test })) };
+      return { column, development: named(by.development), holdOut: named(by.holdOut), outOfTime: named(by.outOfTime) };
+    }),
+    segments: [...figures.segments],
   };
+}
+
+/** A fit with inference is never shown without the fit on accepted applicants alone. */
+function withAcceptsOnly(ids: readonly string[], all: ReadonlyMap<string, FoundFit>): string[] {
+  const beside = ids.map((id) => all.get(id)?.acceptsOnlyId ?? null);
+  return [...new Set([...ids, ...beside.filter((id) => id !== null)])];
 }
 
 async function sidesOf(fits: readonly FoundFit[]): Promise<Side[]> {
@@ -84,6 +100,22 @@ async function toScore(sequelize: Sequelize, { fit, specification, path, index }
   };
 }
 
+/** The incumbent scores and segments of the sample of one fit. */
+async function otherColumns(sequelize: Sequelize, fit: FoundFit): Promise<OtherColumns> {
+  const definition = await findDefinition(sequelize, fit.definitionId);
+  if (!definition) throw new Error(`Fit ${fit.id} has no sample definition`);
+  const { content, rows, sampleId } = definition;
+  const named = (role: ColumnRole): string[] => content.columns.filter((column) => column.role === role).map(({ column }) => column);
+  const [incumbents, segments] = [named('incumbent score'), named('segment')];
+  const source = await openSample(sequelize, sampleId, [...incumbents, ...segments]);
+  const of = (names: readonly string[]): Map<string, SourceColumn> =>
+    new Map(names.flatMap((name) => {
+      const column = source.column(name);
+      return column ? [[name, column] as const] : [];
+    }));
+  return { data: content.data, rows, incumbents: of(incumbents), segments: of(segments) };
+}
+
 function presentSide({ fit, path, index }: Side, { metrics }: ComparedFitFigures): ComparedFit {
   return {
     id: fit.id,
@@ -94,6 +126,7 @@ function presentSide({ fit, path, index }: Side, { metrics }: ComparedFitFigures
     mixing: fit.settings.mixing,
     chosenBy: fit.choice?.rule ?? 'not chosen',
     kept: path.kept[index],
+    inference: fit.settings.declined.method,
     ...metrics,
   };
 }

@@ -23,6 +23,13 @@ const folds = ({ fit }: Specification): string => {
   return `${fit.folds.count}, seed ${fit.folds.seed}${fit.folds.groups === null ? '' : `, grouped by ${fit.folds.groups}`}`;
 };
 
+const declined = (specification: Specification): string => {
+  if (specification.declined === null) return 'none';
+  const { method, bands, uplift } = specification.declined;
+  if (method === 'none') return 'take no part';
+  return method === 'parcelling' ? `parcelling, ${bands} bands, uplift ${uplift}` : method === 'fuzzy' ? 'fuzzy' : 're-weighting';
+};
+
 const columnsWhere = (specification: Specification, holds: (entry: Specification['characteristics'][number]) => boolean): string =>
   specification.characteristics.filter(holds).map(({ column }) => column).join(', ') || 'none';
 
@@ -37,6 +44,8 @@ const settings: readonly Setting[] = [
   ],
   ['Exclusions', ({ exclusions }) => exclusions.map(({ reason }) => reason).join('; ') || 'none'],
   ['Weight', ({ weight }) => weight?.column ?? 'none'],
+  ['Declined applicants', declined],
+  ['Bad rate of the population', ({ priorCorrection }) => (priorCorrection === null ? 'as in the sample' : `${100 * priorCorrection.populationBadRate} %`)],
   ['Penalty', penalty],
   ['Penalties', lambda],
   ['Standardised', ({ fit }) => (fit.standardize ? 'yes' : 'no')],

@@ -14,6 +14,7 @@ import { recordHead } from '../record/verify';
 import { actorOf } from '../people/actor-of';
 import type { ReplicationEvidence } from '../validation/replicate';
 import type { StabilityEvidence } from '../validation/stability';
+import type { ComparedWith } from '../versions/compared-with';
 import { type FoundEvidence, readEvidence } from '../versions/evidence';
 import { type FoundVersion, findVersion } from '../versions/find-version';
 
@@ -37,7 +38,7 @@ interface ClassingEvidence {
 interface FitEvidence {
   choice: { rule: string; reason: string; by: string; at: string };
 }
-type PerformanceEvidence = Pick<VersionFigures, 'distributions' | 'bandCalibrations'>;
+type PerformanceEvidence = Pick<VersionFigures, 'distributions' | 'bandCalibrations'> & { comparisons?: readonly ComparedWith[] };
 
 /** Which section a text of the author stands in, and under what head. */
 const textPlaces: Record<VersionTextKey, { section: number; topic: string }> = {
@@ -198,7 +199,10 @@ export async function gatherDocument(context: Context, versionId: string, person
     },
     scoreDistributions: (performance?.content.distributions ?? []).filter(({ partition }) => shown(partition)).map((entry) => ({ evidence: performance!.number, ...entry })),
     bandCalibrations: (performance?.content.bandCalibrations ?? []).filter(({ partition }) => shown(partition)).map((entry) => ({ evidence: performance!.number, ...entry })),
-    comparisons: [],
+    // Evidence from before comparisons were frozen has none.
+    comparisons: (performance?.content.comparisons ?? [])
+      .filter(({ partition }) => shown(partition))
+      .map(({ lower, upper, ...entry }) => ({ evidence: performance!.number, ...entry, interval: interval(lower, upper) })),
     replications: evidence.filter(({ kind }) => kind === 'replication').map(replicationOf),
     validation: validationOf(version),
     history: history.map(({ sequence, at, by, act, reason }) => ({ sequence, at, by, act, reason })),

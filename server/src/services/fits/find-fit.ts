@@ -17,6 +17,7 @@ export interface FoundFit extends FitStanding {
   readonly settings: FitSettings;
   readonly specificationSha256: string;
   readonly characteristics: number;
+  readonly acceptsOnlyId: string | null;
   readonly runId: string | null;
   readonly revision: number;
   readonly createdAt: Date;
@@ -51,7 +52,7 @@ interface Row extends Omit<FoundFit, 'model' | 'state' | 'problem' | 'choice'> {
 // Stale: a characteristic of the binning has another revision now, or one came or went.
 const select = `
   SELECT f.id, f.model_id AS "modelId", f.number, f.name, f.binning_id AS "binningId", b.name AS "binningName", f.definition_id AS "definitionId",
-         f.settings, f.specification_sha256 AS "specificationSha256", f.characteristics, f.run_id AS "runId", f.revision,
+         f.settings, f.specification_sha256 AS "specificationSha256", f.characteristics, f.accepts_only_id AS "acceptsOnlyId", f.run_id AS "runId", f.revision,
          f.created_at AS "createdAt", f.created_by AS "createdBy", p.name AS "createdByName",
          f.binning_revisions IS DISTINCT FROM (
            SELECT coalesce(jsonb_object_agg(c.column_name, c.revision), '{}'::jsonb)
@@ -82,8 +83,15 @@ export async function findFits(sequelize: Sequelize, modelId: string, tx: Transa
   return (await rows<Row>(sequelize, `${select} WHERE f.model_id = $1 ORDER BY f.number DESC`, [modelId], tx)).map(found);
 }
 
+const laterSettings: Pick<FitSettings, 'declined' | 'priorCorrection'> = {
+  declined: { method: 'none', bands: 10, uplift: 1.5, reason: '' },
+  priorCorrection: null,
+};
+
 function found({ memberIds, runState, runProblem, fitted, ...row }: Row): FoundFit {
-  return { ...row, model: { memberIds }, state: stateOf(runState, fitted), problem: fitted ? null : (runProblem?.message ?? null) };
+  // Fits from before a setting was there were made as its default says.
+  const settings: FitSettings = { ...laterSettings, ...row.settings };
+  return { ...row, settings, model: { memberIds }, state: stateOf(runState, fitted), problem: fitted ? null : (runProblem?.message ?? null) };
 }
 
 /** A path that is there is ready, whatever its run says meanwhile; without one the run tells. */

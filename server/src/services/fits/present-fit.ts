@@ -16,6 +16,8 @@ export function presentFitSummary(fit: FoundFit): FitSummary {
     binningName: fit.binningName,
     definitionId: fit.definitionId,
     mixing: fit.settings.mixing,
+    inference: fit.settings.declined.method,
+    acceptsOnlyId: fit.acceptsOnlyId,
     characteristics: fit.characteristics,
     choice: choice && {
       id: choice.id,

@@ -17,6 +17,8 @@ export async function readPath(sequelize: Sequelize, fit: FoundFit): Promise<Fit
   if (!fitted) throw notFound();
   return {
     ...fitted.path,
+    // A path from before there was a correction has none.
+    priorCorrection: (fitted.path as Partial<FitPath>).priorCorrection ?? null,
     development: fitted.development,
     holdOut: fitted.holdOut,
     outOfTime: state === 'opened' ? fitted.outOfTime : null,

@@ -2,6 +2,7 @@ import { randomUUID } from 'node:crypto';
 import type { FitSettings } from '@tallystone/contracts/fits/schema';
 import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import { problemCodes } from '@tallystone/contracts/problems/codes';
+import canonicalize from 'canonicalize';
 import type { Transaction } from 'sequelize';
 import type { Context } from '../../context';
 import { rows } from '../../database/sql';
@@ -16,7 +17,7 @@ import type { FoundModel } from '../models/find-model';
 import { appendRecord } from '../record/append';
 import { findDefinition } from '../samples/definitions';
 import { buildSpecification, canonical } from '../specifications/build-specification';
-import { type FoundFit, findFit } from './find-fit';
+import { type FoundFit, findFit, findFits } from './find-fit';
 
 /**
  * Takes the binning as it is now, writes the whole specification down and starts the run. The fit keeps that specification whatever
@@ -37,9 +38,13 @@ export async function startFit(
   if (!definition) throw new Error(`Binning ${binning.id} has no sample definition`);
   const included = await binningCharacteristics(context.sequelize, binning.id, tx);
   const barred = new Set(definition.content.columns.filter((column) => column.protected && !column.citation).map(({ column }) => column));
-  const problems = problemsOf(settings, included.map(({ definition: entry }) => entry.column), barred);
+  const problems = [
+    ...problemsOf(settings, included.map(({ definition: entry }) => entry.column), barred),
+    ...problemsOfInference(settings, definition.content.declined, definition.counts.declined),
+  ];
   if (problems.length > 0) throw invalid(problems);
 
+  const acceptsOnlyId = settings.declined.method === 'none' ? null : await acceptsOnly(context, tx, asked);
   const specification = buildSpecification({
     title: `${model.name}, ${settings.name}`,
     head: definition.content,
@@ -64,6 +69,7 @@ export async function startFit(
       specification: text,
       specificationSha256: sha256,
       characteristics: specification.characteristics.length,
+      acceptsOnlyId,
       createdBy: person.id,
     },
     { transaction: tx },
@@ -83,9 +89,40 @@ export async function startFit(
     entity: 'fit',
     entityId: id,
     modelId: model.id,
-    after: { name: settings.name, mixing: settings.mixing, specificationSha256: sha256 },
+    after: {
+      name: settings.name,
+      mixing: settings.mixing,
+      specificationSha256: sha256,
+      ...(acceptsOnlyId && { inference: settings.declined.method }),
+      ...(settings.priorCorrection && { populationBadRate: settings.priorCorrection.populationBadRate }),
+    },
+    reason: [settings.declined.reason, settings.priorCorrection?.reason].filter(Boolean).join(' ') || undefined,
   });
   return (await findFit(context.sequelize, id, tx))!;
+}
+
+/**
+ * The fit on accepted applicants alone that goes with a fit with inference: one that is there with the same settings, or another one started now.
+ */
+async function acceptsOnly(context: Context, tx: Transaction, asked: Parameters<typeof startFit>[2]): Promise<string> {
+  const alone: FitSettings = {
+    ...asked.settings,
+    name: `${asked.settings.name.slice(0, 105)}, accepts only`,
+    declined: { method: 'none', bands: 10, uplift: 1.5, reason: '' },
+  };
+  const but = (settings: FitSettings): string | undefined => canonicalize({ ...settings, name: '' });
+  const wanted = but(alone);
+  const there = (await findFits(context.sequelize, asked.model.id, tx)).find(
+    (fit) => fit.binningId === asked.binningId && !fit.stale && fit.state !== 'failed' && fit.state !== 'cancelled' && but(fit.settings) === wanted,
+  );
+  return there?.id ?? (await startFit(context, tx, { ...asked, settings: alone })).id;
+}
+
+function problemsOfInference({ declined }: FitSettings, treatment: { column: string } | null, count: number): Found[] {
+  if (declined.method === 'none') return [];
+  const where = { field: 'settings.declined.method' };
+  if (treatment === null) return [{ message: 'The sample’s definition treats nobody as declined: there is nothing to infer.', where }];
+  return count === 0 ? [{ message: `No row of the sample is declined by ${treatment.column}: there is nothing to infer.`, where }] : [];
 }
 
 type Found = { message: string; where: ProblemItem['where'] };

@@ -57,6 +57,9 @@ export function columnsOf(content: SampleDefinitionContent): Set<string> {
   if (content.declined) names.add(content.declined.column);
   if (content.weight) names.add(content.weight.column);
   if ('column' in content.partition) names.add(content.partition.column);
-  else if (content.partition.outOfTime) names.add(content.partition.outOfTime.column);
+  else {
+    if (content.partition.outOfTime) names.add(content.partition.outOfTime.column);
+    if (content.partition.groups !== undefined) names.add(content.partition.groups);
+  }
   return names;
 }

@@ -301,12 +301,14 @@ function partitionOf(draft: DraftContent, holder: (role: ColumnRole) => DefinedC
     };
   }
   const { seed, holdOutShare, outOfTime } = partition;
-  if (!outOfTime) return { seed, holdOutShare, outOfTime: null };
+  const group = holder('group key');
+  const groups = group && { groups: group.column };
+  if (!outOfTime) return { seed, holdOutShare, ...groups, outOfTime: null };
   const date = holder('application date');
   if (!date)
     say('no-application-date', 'Out-of-time is taken by date, and no column has the role of the application date.', { section });
   if (outOfTime.from === null && outOfTime.to === null) say('no-period', 'Out-of-time needs a first or a last day.', { section });
   if (outOfTime.from !== null && outOfTime.to !== null && outOfTime.from > outOfTime.to)
     say('empty-period', 'Out-of-time ends before it begins.', { section });
-  return date ? { seed, holdOutShare, outOfTime: { column: date.column, ...outOfTime } } : null;
+  return date ? { seed, holdOutShare, ...groups, outOfTime: { column: date.column, ...outOfTime } } : null;
 }

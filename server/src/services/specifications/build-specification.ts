@@ -54,13 +54,13 @@ export function buildSpecification(parts: SpecificationParts): Specification {
     data: head.data,
     exclusions: head.exclusions,
     outcome: head.outcome,
-    declined: head.declined,
+    declined: declinedOf(head, settings),
     weight: head.weight,
-    priorCorrection: null,
+    priorCorrection: settings.priorCorrection && { populationBadRate: settings.priorCorrection.populationBadRate },
     partition: head.partition,
     characteristics,
     woe: settings.woe,
-    fit: fitOf(settings),
+    fit: fitOf(settings, head.columns.find(({ role }) => role === 'group key')?.column ?? null),
     recalibration: null,
     scaling: parts.scaling ?? defaultScaling,
     bands: parts.bands ?? defaultBands,
@@ -70,13 +70,20 @@ export function buildSpecification(parts: SpecificationParts): Specification {
   };
 }
 
-function fitOf(settings: FitSettingsOfFit): FitSettings {
+/** Who was declined is for the sample to say, how they are treated for the fit. */
+function declinedOf(head: SampleDefinitionContent, { declined }: FitSettingsOfFit): Specification['declined'] {
+  if (head.declined === null) return null;
+  return declined.method === 'none' ? head.declined : { ...head.declined, method: declined.method, bands: declined.bands, uplift: declined.uplift };
+}
+
+/** Rows of one group key stay in one fold. */
+function fitOf(settings: FitSettingsOfFit, groups: string | null): FitSettings {
   return {
     mixing: settings.mixing,
     standardize: settings.standardize,
     lambda: settings.lambda,
     choose: 'one-standard-error',
-    folds: { count: settings.folds.count, seed: settings.folds.seed, groups: null, classing: settings.folds.classing },
+    folds: { count: settings.folds.count, seed: settings.folds.seed, groups, classing: settings.folds.classing },
     refit: null,
   };
 }

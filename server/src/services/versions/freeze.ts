@@ -19,6 +19,7 @@ import { type FoundDefinition, findDefinition } from '../samples/definitions';
 import { loadColumns } from '../samples/load-columns';
 import { type LoadedScorecard, loadScorecard } from '../scorecards/load-scorecard';
 import { canonical } from '../specifications/build-specification';
+import { type ComparedWith, comparedWith } from './compared-with';
 import { addEvidence } from './evidence';
 import { versionEvidence } from './version-evidence';
 
@@ -30,6 +31,9 @@ export async function obstaclesToFreezing(context: Pick<Context, 'sequelize'>, f
   else if (!fit.choice) obstacle('no-penalty-chosen', 'No penalty of the fit is chosen yet.');
   else if (fit.choice.kept === 0) obstacle('nothing-kept', 'At the chosen penalty no characteristic is kept: there is no scorecard to freeze.');
   if (fit.stale) obstacle('stale-fit', 'The binning has changed since this fit. Fit again, so that the version has the bins that are there now.');
+  const beside = fit.acceptsOnlyId === null ? null : await findFit(context.sequelize, fit.acceptsOnlyId, tx);
+  if (beside && beside.state !== 'ready')
+    obstacle('no-accepts-only', `“${beside.name}” is ${beside.state}: a fit with declined applicants is frozen with the accepts-only fit beside it.`);
   const [found] = await rows<{ revision: number }>(context.sequelize, 'SELECT revision FROM scorecards WHERE fit_id = $1', [fit.id], tx);
   if (!found) obstacle('no-scorecard', 'The scorecard of this fit was never saved: state scaling and reason texts first.');
   return obstacles;
@@ -66,6 +70,7 @@ export interface Freezing {
   readonly dataSha256: string;
   readonly specification: { text: string; sha256: string };
   readonly frozen: Frozen;
+  readonly compared: readonly ComparedWith[];
 }
 
 /**
@@ -102,7 +107,8 @@ export async function replayForFreezing(
   if (!(distance <= 1e-9 * Math.max(1, fit.choice.lambda))) {
     throw new Error(`Replaying chose penalty ${place} where ${fit.choice.lambda} was chosen on the path`);
   }
-  return { fit, definition, loaded, dataSha256, specification, frozen };
+  const compared = await comparedWith(sequelize, fit);
+  return { fit, definition, loaded, dataSha256, specification, frozen, compared };
 }
 
 /** Writes the version with its first act, its evidence and its record, in the transaction that ends the run. */
@@ -111,7 +117,7 @@ export async function writeVersion(
   tx: Transaction,
   run: { id: string; personId: string },
   note: string,
-  { fit, definition, loaded, dataSha256, specification, frozen }: Freezing,
+  { fit, definition, loaded, dataSha256, specification, frozen, compared }: Freezing,
 ): Promise<{ versionId: string; number: number }> {
   const { sequelize } = context;
   await rows(sequelize, 'SELECT id FROM models WHERE id = $1 FOR UPDATE', [fit.modelId], tx);
@@ -147,7 +153,7 @@ export async function writeVersion(
     { transaction: tx },
   );
   await VersionTextsRow.create({ versionId, texts: {}, changedBy: run.personId }, { transaction: tx });
-  const pieces = await versionEvidence(sequelize, tx, { fit, definition, loaded, specification, result, fingerprint, dataSha256, frozen });
+  const pieces = await versionEvidence(sequelize, tx, { fit, definition, loaded, specification, result, fingerprint, dataSha256, frozen, compared });
   for (const piece of pieces) await addEvidence(sequelize, tx, { ...piece, versionId, runId: run.id, personId: run.personId });
   await appendRecord(tx, {
     actor: await actorOf(run.personId, tx),

@@ -10,7 +10,7 @@ type Piece = Pick<NewEvidence, 'kind' | 'title' | 'content'>;
 export async function versionEvidence(
   sequelize: Sequelize,
   tx: Transaction,
-  { fit, definition, loaded, specification, result, fingerprint, dataSha256, frozen }: Freezing & { result: { text: string; sha256: string }; fingerprint: string },
+  { fit, definition, loaded, specification, result, fingerprint, dataSha256, frozen, compared }: Freezing & { result: { text: string; sha256: string }; fingerprint: string },
 ): Promise<Piece[]> {
   const [sample] = await rows<Record<string, unknown>>(
     sequelize,
@@ -73,6 +73,7 @@ export async function versionEvidence(
         psi: frozen.result.psi,
         distributions: frozen.figures.distributions,
         bandCalibrations: frozen.figures.bandCalibrations,
+        comparisons: compared,
       },
     },
   ];

@@ -3,17 +3,18 @@ import { MatButtonModule } from '@angular/material/button';
 import { MatFormFieldModule } from '@angular/material/form-field';
 import { MatSelectModule } from '@angular/material/select';
 import { Router, RouterLink } from '@angular/router';
-import type { ComparedCharacteristic, ComparedFit } from '@tallystone/contracts/comparison/schema';
+import type { ComparedCharacteristic, ComparedSegment, ComparedFit } from '@tallystone/contracts/comparison/schema';
 import { type Column } from '../../../ui/column';
 import { DecisionNotice } from '../../../ui/decision-notice';
 import { DenseTable } from '../../../ui/dense-table';
 import { EmptyState } from '../../../ui/empty-state';
+import { inferenceCaution, inferenceNames } from '../../../ui/inference';
 import { fixed, metric, significant } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { PartitionMark } from '../../../ui/partition-mark';
 import { ProblemList } from '../../../ui/problem-list';
 import { Comparisons } from '../data/comparisons';
-import { aucText, coefficientText, comparisonFinding, contested, namedIn, testText } from '../ui/comparison-view';
+import { aucText, coefficientText, comparisonFinding, contested, incumbentFinding, incumbentRows, namedIn, testText } from '../ui/comparison-view';
 
 type Partition = 'development' | 'holdOut' | 'outOfTime';
 
@@ -122,6 +123,20 @@ export class ComparisonPage {
     ];
   });
 
+  protected readonly incumbentSentence = incumbentFinding;
+  protected readonly incumbentRows = incumbentRows;
+  protected readonly bySegment = (row: ComparedSegment): string => `${row.column} ${row.value}`;
+  protected readonly segmentColumns = computed<Column<ComparedSegment>[]>(() => [
+    { key: 'value', label: 'Segment', value: (row) => `${row.column}: ${row.value}` },
+    { key: 'rows', label: 'Rows', kind: 'count', value: (row) => row.rows },
+    { key: 'bads', label: 'Bads', kind: 'count', value: (row) => row.bads },
+    ...(this.value()?.fits ?? []).map(
+      (fit, k): Column<ComparedSegment> => ({ key: `auc-${fit.id}`, label: fit.name, unit: 'AUC', kind: 'metric', value: (row) => row.auc[k] }),
+    ),
+  ]);
+  protected readonly inferring = computed(() => this.value()?.fits.some((fit) => fit.inference !== 'none') ?? false);
+  protected readonly inferenceNames = inferenceNames;
+  protected readonly caution = inferenceCaution;
   protected readonly named = namedIn;
   protected readonly byColumn = (row: ComparedCharacteristic): string => row.column;
   protected readonly isOut = (row: ComparedCharacteristic): boolean => row.coefficients.every((value) => value === null || value === 0);

@@ -1,5 +1,5 @@
 import type { ComparedMetrics, PairedTest } from '@tallystone/contracts/comparison/schema';
-import { aucText, coefficientText, namedIn, testText } from './comparison-view';
+import { aucText, coefficientText, incumbentFinding, incumbentRows, namedIn, testText } from './comparison-view';
 
 const test = (change: Partial<PairedTest>): PairedTest => ({ fitId: 'b', partition: 'holdOut', difference: 0.0031, pValue: 0.0421, ...change }) as PairedTest;
 
@@ -16,6 +16,15 @@ describe('the words of a comparison', () => {
     expect(namedIn('a, b, c, d, e, f, g')).toBe('7 characteristics');
     expect(namedIn('age, income')).toBeNull();
     expect(namedIn('none')).toBeNull();
+  });
+
+  it('hold an incumbent against the fits, and say when it ranks the other way', () => {
+    const figures = { rows: 900, missing: 100, bads: 90, auc: 0.7, aucLower: 0.65, aucUpper: 0.75, ks: 0.3, tests: [{ fitId: 'a', difference: 0.05, lower: 0.01, upper: 0.09, pValue: 0.01 }] };
+    const incumbent = { column: 'old_score', development: null, holdOut: figures, outOfTime: null };
+    expect(incumbentRows(incumbent)).toEqual([{ partition: 'holdOut', cells: ['0.700 (0.650 to 0.750), KS 0.300', '+0.0500, p = 0.010'] }]);
+    expect(incumbentFinding(incumbent)).toBe('old_score reaches an AUC of 0.700 on 900 rows of hold-out, 100 rows without the score left out.');
+    expect(incumbentFinding({ ...incumbent, holdOut: { ...figures, auc: 0.3, missing: 0 } })).toContain('ranks the other way: its AUC is 0.300 on 900 rows of hold-out.');
+    expect(incumbentFinding({ ...incumbent, holdOut: null })).toContain('too few rows');
   });
 
   it('give AUC with its interval, and tell out of the fit from shrunk to zero', () => {

@@ -1,4 +1,4 @@
-import type { ComparedCharacteristic, ComparedMetrics, Comparison, PairedTest } from '@tallystone/contracts/comparison/schema';
+import type { ComparedCharacteristic, ComparedIncumbent, ComparedMetrics, Comparison, PairedTest } from '@tallystone/contracts/comparison/schema';
 import { DASH, fixed, metric, pValue, plural, signed } from '../../../ui/numbers';
 
 /**
@@ -51,4 +51,27 @@ export function contested(entry: ComparedCharacteristic): boolean {
 export function namedIn(setting: string): string | null {
   const names = setting.split(', ');
   return names.length > 6 ? plural(names.length, 'characteristic') : null;
+}
+
+const partitions = ['development', 'holdOut', 'outOfTime'] as const;
+
+/** One line for each partition that the incumbent can be read on: its AUC, then each fit less the incumbent. */
+export function incumbentRows(incumbent: ComparedIncumbent): { readonly partition: (typeof partitions)[number]; readonly cells: string[] }[] {
+  return partitions.flatMap((partition) => {
+    const at = incumbent[partition];
+    if (at === null) return [];
+    const own = `${at.aucLower === null ? metric(at.auc) : `${metric(at.auc)} (${metric(at.aucLower)} to ${metric(at.aucUpper)})`}, KS ${metric(at.ks)}`;
+    return [{ partition, cells: [own, ...at.tests.map((test) => testText({ partition, ...test }))] }];
+  });
+}
+
+/** Hold-out first: which way the score ranks, on how many rows; an incumbent below 0.5 ranks the other way and is said to. */
+export function incumbentFinding(incumbent: ComparedIncumbent): string {
+  const at = incumbent.holdOut ?? incumbent.development;
+  const where = incumbent.holdOut ? 'hold-out' : 'development';
+  if (at === null) return `${incumbent.column} stands in too few rows with a known outcome to be compared.`;
+  const rows = `${plural(at.rows, 'row')} of ${where}${at.missing > 0 ? `, ${plural(at.missing, 'row')} without the score left out` : ''}`;
+  return at.auc < 0.5
+    ? `${incumbent.column} ranks the other way: its AUC is ${metric(at.auc)} on ${rows}. Turn its sign in the file to compare it.`
+    : `${incumbent.column} reaches an AUC of ${metric(at.auc)} on ${rows}.`;
 }

@@ -1,7 +1,7 @@
 import { HttpClient, httpResource } from '@angular/common/http';
 import { Injectable, inject } from '@angular/core';
 import type { BinningList, CharacteristicList } from '@tallystone/contracts/binnings/schema';
-import type { Fit, FitList, FitPath, NewChoice, NewFit } from '@tallystone/contracts/fits/schema';
+import type { Fit, FitBasis, FitList, FitPath, NewChoice, NewFit } from '@tallystone/contracts/fits/schema';
 import { firstValueFrom } from 'rxjs';
 import { type Tagged, idempotent, readTagged, saveTagged, tagged } from '../../../core/http/etag';
 
@@ -35,6 +35,14 @@ export class Fits {
     return httpResource<CharacteristicList>(() => {
       const id = binningId();
       return id === null ? undefined : `/api/binnings/${id}/characteristics`;
+    });
+  }
+
+  /** What a fit on the sample of a binning can draw on; nothing is asked while there is none. */
+  basis(definitionId: () => string | null) {
+    return httpResource<FitBasis>(() => {
+      const id = definitionId();
+      return id === null ? undefined : `/api/sample-definitions/${id}/fit-basis`;
     });
   }
 

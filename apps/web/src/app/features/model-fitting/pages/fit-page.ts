@@ -18,7 +18,7 @@ import { RunProgress } from '../../../ui/run-progress';
 import { Fits } from '../data/fits';
 import { AtPenalty } from '../ui/at-penalty';
 import { PathFigure } from '../ui/path-figure';
-import { decisionAt, pathFinding, pathTitle, ruleAt } from '../ui/path-view';
+import { correctionWords, decisionAt, inferenceWords, pathFinding, pathTitle, ruleAt } from '../ui/path-view';
 
 interface PathRow {
   readonly index: number;
@@ -49,6 +49,9 @@ const ruleNames = {
     }
     .act {
       margin-bottom: 24px;
+    }
+    .caution {
+      max-width: 90ch;
     }
   `,
 })
@@ -98,11 +101,19 @@ export class FitPage {
     const path = this.pathValue();
     return path ? decisionAt(path, this.index()) : null;
   });
+  protected readonly inference = computed(() => inferenceWords(this.fit()?.inference ?? 'none'));
+  protected readonly correction = computed(() => {
+    const path = this.pathValue();
+    return path ? correctionWords(path, this.index()) : null;
+  });
   protected readonly isChosen = computed(() => this.fit()?.choice?.index === this.index());
   protected readonly compareWith = computed(() => {
     const fit = this.fit();
     if (!fit || !this.list.hasValue()) return null;
-    const other = this.list.value().fits.find((entry) => entry.state === 'ready' && entry.id !== fit.id);
+    const fits = this.list.value().fits;
+    // The accepts-only fit first: a fit with inference is held against it.
+    if (fit.acceptsOnlyId !== null) return fit.state === 'ready' ? `${fit.acceptsOnlyId},${fit.id}` : null;
+    const other = fits.find((entry) => entry.state === 'ready' && entry.id !== fit.id);
     return fit.state === 'ready' && other ? `${fit.id},${other.id}` : null;
   });
   protected readonly table = computed<FigureTable<PathRow> | null>(() => {

@@ -9,6 +9,7 @@ import { Runs } from '../../../core/events/runs';
 import { type Column } from '../../../ui/column';
 import { CellTemplate, DenseTable } from '../../../ui/dense-table';
 import { EmptyState } from '../../../ui/empty-state';
+import { inferenceNames } from '../../../ui/inference';
 import { plural, significant } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
@@ -103,6 +104,7 @@ export class FitsPage {
     { key: 'name', label: 'Fit', value: (fit) => `${fit.number}. ${fit.name}`, link: (fit) => [fit.id] },
     { key: 'pick', label: 'Compare', value: () => '', sortable: false },
     { key: 'penalty', label: 'Penalty', value: (fit) => kindOf(fit.mixing) },
+    { key: 'inference', label: 'Declined', value: (fit) => inferenceNames[fit.inference] },
     { key: 'binning', label: 'Binning', value: (fit) => `${fit.binningName}${fit.stale ? ' (changed since)' : ''}` },
     { key: 'state', label: 'State', value: (fit) => fit.state },
     { key: 'kept', label: 'Kept', kind: 'count', value: (fit) => fit.choice?.kept ?? null },

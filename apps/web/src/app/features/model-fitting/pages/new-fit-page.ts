@@ -1,5 +1,5 @@
 import { ChangeDetectionStrategy, Component, computed, effect, inject, input, signal } from '@angular/core';
-import { toSignal } from '@angular/core/rxjs-interop';
+import { takeUntilDestroyed, toSignal } from '@angular/core/rxjs-interop';
 import { type AbstractControl, FormArray, FormControl, FormGroup, ReactiveFormsModule, type ValidationErrors, Validators } from '@angular/forms';
 import { MatButtonModule } from '@angular/material/button';
 import { MatCheckboxModule } from '@angular/material/checkbox';
@@ -8,12 +8,13 @@ import { MatInputModule } from '@angular/material/input';
 import { MatRadioModule } from '@angular/material/radio';
 import { MatSelectModule } from '@angular/material/select';
 import { Router, RouterLink } from '@angular/router';
-import type { NewFit } from '@tallystone/contracts/fits/schema';
+import type { DeclinedMethod, NewFit } from '@tallystone/contracts/fits/schema';
 import { CurrentModel } from '../../../core/current-model';
 import { newIdempotencyKey } from '../../../core/http/etag';
 import { warnBeforeUnload } from '../../../core/unsaved-changes';
 import { EmptyState } from '../../../ui/empty-state';
-import { plural, woe } from '../../../ui/numbers';
+import { inferenceCaution } from '../../../ui/inference';
+import { plural, share, woe } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { Fits } from '../data/fits';
@@ -41,6 +42,19 @@ const treatmentGroup = (column: string) =>
 
 const number = (value: number, low: number, high: number) =>
   new FormControl(value, { nonNullable: true, validators: [Validators.required, Validators.min(low), Validators.max(high)] });
+
+/** An inference and a prior correction each need their reason. */
+function reasonsWhereChosen(form: AbstractControl): ValidationErrors | null {
+  const demand = (name: string, wanted: boolean): boolean => {
+    const control = form.get(name);
+    const missing = wanted && (control?.value as string).trim() === '';
+    control?.setErrors(missing ? { required: true } : null);
+    return missing;
+  };
+  const inference = demand('declinedReason', form.get('declined')?.value !== 'none');
+  const correction = demand('correctionReason', form.get('corrected')?.value === true);
+  return inference || correction ? { reason: true } : null;
+}
 
 /** The settings of a new fit: penalty, path, folds, and how each characteristic enters. */
 @Component({
@@ -84,13 +98,25 @@ export class NewFitPage {
     classing: new FormControl<'once' | 'woe' | 'cuts'>('woe', { nonNullable: true }),
     smoothing: number(0.5, 0, 10),
     standardize: new FormControl(true, { nonNullable: true }),
+    declined: new FormControl<DeclinedMethod>('none', { nonNullable: true }),
+    bands: number(10, 2, 100),
+    uplift: number(1.5, 0.1, 20),
+    declinedReason: new FormControl('', { nonNullable: true }),
+    corrected: new FormControl(false, { nonNullable: true }),
+    populationPercent: number(5, 0.001, 99.999),
+    correctionReason: new FormControl('', { nonNullable: true }),
     treatments: this.treatments,
-  });
+  }, { validators: reasonsWhereChosen });
 
   protected readonly binnings = this.fits.binnings(() => this.modelId());
   protected readonly ready = computed(() => (this.binnings.hasValue() ? this.binnings.value().binnings.filter((entry) => entry.state === 'ready') : []));
   private readonly binningId = toSignal(this.form.controls.binningId.valueChanges, { initialValue: '' });
   protected readonly characteristics = this.fits.characteristics(() => this.binningId() || null);
+  private readonly basisOfBinning = this.fits.basis(() => this.ready().find((entry) => entry.id === this.binningId())?.definitionId ?? null);
+  protected readonly basis = computed(() => (this.basisOfBinning.hasValue() ? this.basisOfBinning.value() : null));
+  protected readonly caution = inferenceCaution;
+  protected readonly rows = (n: number): string => plural(n, 'applicant is', 'applicants are');
+  protected readonly percent = share;
   private readonly included = computed(() =>
     this.characteristics.hasValue() ? this.characteristics.value().characteristics.filter((entry) => entry.included) : [],
   );
@@ -109,6 +135,7 @@ export class NewFitPage {
 
   constructor() {
     warnBeforeUnload(() => this.unsaved());
+    this.resetHidden();
     effect(() => {
       const ready = this.ready();
       if (ready.length === 0 || this.form.controls.binningId.value !== '') return;
@@ -120,6 +147,17 @@ export class NewFitPage {
       this.treatments.clear({ emitEvent: false });
       for (const column of columns) this.treatments.push(before.get(column) ?? treatmentGroup(column), { emitEvent: false });
       this.treatments.updateValueAndValidity();
+    });
+  }
+
+  /** What is not asked for any more cannot stand in the way. */
+  private resetHidden(): void {
+    const { corrected, populationPercent, declined, bands, uplift } = this.form.controls;
+    corrected.valueChanges.pipe(takeUntilDestroyed()).subscribe((on) => on || populationPercent.reset());
+    declined.valueChanges.pipe(takeUntilDestroyed()).subscribe((method) => {
+      if (method === 'parcelling') return;
+      bands.reset();
+      uplift.reset();
     });
   }
 
@@ -171,6 +209,12 @@ export class NewFitPage {
         lambda: { count: value.count, smallestRatio: value.smallestRatio, earlyStop: true },
         folds: { count: value.folds, seed: value.seed, classing: value.classing },
         woe: { smoothing: value.smoothing, when: 'zero-cell' },
+        // Nobody can be inferred on a sample that treats nobody as declined, whatever was chosen on another binning.
+        declined:
+          this.basis()?.declined && value.declined !== 'none'
+            ? { method: value.declined, bands: value.bands, uplift: value.uplift, reason: value.declinedReason }
+            : undefined,
+        priorCorrection: value.corrected ? { populationBadRate: value.populationPercent / 100, reason: value.correctionReason } : null,
         characteristics: value.treatments
           .filter((entry) => entry.treatment !== 'free' || entry.signConstraint)
           .map((entry) => ({ column: entry.column, treatment: entry.treatment, signConstraint: entry.signConstraint, reason: entry.reason })),

@@ -38,6 +38,7 @@ export function smallPath(change: Partial<FitPath> = {}): FitPath {
     status: ['converged', 'converged', 'converged', 'converged', 'converged', 'converged'],
     largestLambda: 0.1,
     stoppedEarly: false,
+    priorCorrection: null,
     characteristics: [
       { column: 'age', label: 'age', kind: 'numeric', treatment: 'free', informationValue: 0.3, bins: bins([-0.5, 0, 0.6]) },
       { column: 'income', label: 'income', kind: 'numeric', treatment: 'free', informationValue: 0.1, bins: bins([-0.2, 0.3]) },

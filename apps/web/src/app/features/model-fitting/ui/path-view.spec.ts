@@ -1,5 +1,5 @@
 import { smallPath } from '../testing/path';
-import { decisionAt, entryOrder, nearestIndex, notchLabel, pathFinding, placeBeside, pathTitle, ruleAt, scorecardAt } from './path-view';
+import { correctionWords, decisionAt, entryOrder, inferenceWords, nearestIndex, notchLabel, pathFinding, placeBeside, pathTitle, ruleAt, scorecardAt } from './path-view';
 
 describe('what a path shows', () => {
   it('lists characteristics in the order they enter', () => {
@@ -57,6 +57,16 @@ describe('what a path shows', () => {
     expect(notchLabel(smallPath(), 4)).toBe('smallest deviance: penalty 0.0050');
     expect(pathTitle(smallPath(), 1)).toBe('Lasso over 6 penalties, ten folds');
     expect(pathTitle(smallPath(), 0.5)).toContain('Elastic net (mixing 0.5');
+  });
+
+  it('say what a prior correction did, and what inference means', () => {
+    expect(correctionWords(smallPath(), 2)).toBeNull();
+    const path = smallPath({ priorCorrection: { sampleBadRate: 0.3, populationBadRate: 0.05, shift: 2.0971 }, intercepts: smallPath().intercepts.map(() => 2.9471) });
+    // 0.85 + ln(19 x 3/7) = 2.947, as King and Zeng's formula gives in the library's docstring.
+    expect(correctionWords(path, 2)).toContain('from 0.850 to 2.947, from the bad rate of the fitted rows, 30.0\u202f%, to that of the population, 5.0\u202f%');
+    expect(correctionWords(path, 2)).toContain('reads off by 2.10');
+    expect(inferenceWords('none')).toBeNull();
+    expect(inferenceWords('parcelling')).toMatch(/^Declined applicants enter WOE and fit by parcelling\. .*cannot be tested on accepted applicants/);
   });
 
   it('places a label where the notch does not run through it', () => {

@@ -1,6 +1,7 @@
-import type { FitPath } from '@tallystone/contracts/fits/schema';
+import type { DeclinedMethod, FitPath } from '@tallystone/contracts/fits/schema';
 import { scaleToPoints } from '@tallystone/numeric/scaling/points';
-import { fixed, plural, significant } from '../../../ui/numbers';
+import { inferenceCaution, inferenceNames } from '../../../ui/inference';
+import { fixed, plural, share, significant } from '../../../ui/numbers';
 
 /** One characteristic at one penalty, as the column beside the figure lists it. */
 export interface CharacteristicAtPenalty {
@@ -88,6 +89,19 @@ export function pathFinding(path: FitPath): string {
     return `${capital(inWords(few))} ${few === 1 ? 'characteristic carries' : 'characteristics carry'} the model; the ${others === 1 ? 'one that follows adds' : `${inWords(others)} that follow add`} ${fixed(gain, 4)} of deviance${others === 1 ? '' : ' between them'}, inside one standard error.`;
   }
   return `${capital(inWords(many))} of ${path.characteristics.length} characteristics ${many === 1 ? 'is' : 'are'} kept at the smallest deviance.`;
+}
+
+/** What the prior correction did to the intercept at this penalty, and what it did not do; null where none is stated. */
+export function correctionWords(path: Pick<FitPath, 'priorCorrection' | 'intercepts'>, index: number): string | null {
+  if (path.priorCorrection === null) return null;
+  const { sampleBadRate, populationBadRate, shift } = path.priorCorrection;
+  const corrected = path.intercepts[index];
+  return `Prior correction: the intercept moves from ${fixed(corrected - shift, 3)} to ${fixed(corrected, 3)}, from the bad rate of the fitted rows, ${share(sampleBadRate)}, to that of the population, ${share(populationBadRate)}. Probabilities and points of every applicant shift by the same log odds; the order of applicants, AUC and KS stay. Calibration in the large is held against the sample and reads off by ${fixed(Math.abs(shift), 2)}.`;
+}
+
+/** What inference means for a reader of this fit; null for a fit on accepted applicants alone. */
+export function inferenceWords(method: DeclinedMethod): string | null {
+  return method === 'none' ? null : `Declined applicants enter WOE and fit by ${inferenceNames[method]}. ${inferenceCaution}`;
 }
 
 /** Which rule, if any, this penalty is the choice of. The one-standard-error rule goes first where both point at the same penalty. */
