@@ -79,6 +79,7 @@ const visits: readonly Visit[] = [
   inside('/sample/:sampleId/reading', { at: ({ sampleId }) => `/sample/${sampleId}/reading`, heading: 'Reading choices', loaded: words('a confirmed definition rests on them') }),
   inside('/sample/:sampleId/columns', { at: ({ sampleId }) => `/sample/${sampleId}/columns`, heading: 'Columns', loaded: table('Columns of the sample') }),
   inside('/sample/:sampleId/definition', { at: ({ sampleId }) => `/sample/${sampleId}/definition`, heading: 'Definition', loaded: table('Partitions') }),
+  inside('/sample/:sampleId/quality', { at: ({ sampleId }) => `/sample/${sampleId}/quality`, heading: 'Data quality', loaded: (page) => page.getByRole('heading', { name: 'Stability by month' }) }),
   inside('/sample/:sampleId/definition', {
     state: 'draft',
     at: ({ sampleId }) => `/sample/${sampleId}/definition`,

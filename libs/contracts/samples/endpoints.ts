@@ -3,6 +3,7 @@ import { Run } from '../runs/schema';
 import { PartitionBalance } from './balance';
 import { ColumnList } from './columns';
 import { ConfirmDraft, ConfirmReading, Definition, DefinitionList, Draft, DraftCheck, DraftContent } from './definition';
+import { ColumnQualityDetail, NewFlagAnswer, QualityColumnQuery, QualityState } from './quality';
 import { Preview, PreviewRequest } from './reading';
 import { DefinitionParams, Sample, SampleList, SampleListParams, SampleParams, UploadParams } from './schema';
 
@@ -140,4 +141,37 @@ export const readBalance = defineEndpoint({
   summary: 'How each characteristic is spread in hold-out and out-of-time against development: inputs only',
   params: DefinitionParams,
   response: PartitionBalance,
+});
+
+export const readQuality = defineEndpoint({
+  method: 'GET',
+  path: `${ofSample}/quality`,
+  summary: 'The quality report of the latest definition: columns, months, flags with their answers',
+  params: SampleParams,
+  response: QualityState,
+});
+export const readColumnQuality = defineEndpoint({
+  method: 'GET',
+  path: `${ofSample}/quality/column`,
+  summary: 'One column of the quality report: groups by outcome, histogram, months',
+  params: SampleParams,
+  query: QualityColumnQuery,
+  response: ColumnQualityDetail,
+});
+export const makeQuality = defineEndpoint({
+  method: 'POST',
+  path: `${ofSample}/quality`,
+  summary: 'Make the quality report of the latest definition, as a run (Idempotency-Key)',
+  params: SampleParams,
+  response: Run,
+  status: 202,
+});
+export const answerFlag = defineEndpoint({
+  method: 'POST',
+  path: `${ofSample}/quality/answers`,
+  summary: 'Answer a flag of the quality report: accepted because ..., or the column is not used',
+  params: SampleParams,
+  body: NewFlagAnswer,
+  response: QualityState,
+  status: 201,
 });

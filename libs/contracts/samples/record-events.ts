@@ -1,5 +1,6 @@
 import { z } from 'zod';
 import { recordEvent } from '../record/event';
+import { FlagAnswerKind, QualityFlagCode } from './quality';
 import { ReadingChoices } from './reading';
 
 const File = z.strictObject({ fileName: z.string(), size: z.number(), sha256: z.string() });
@@ -19,5 +20,9 @@ export const sampleEvents = [
       holdOut: z.int(),
       outOfTime: z.int(),
     }),
+  }),
+  recordEvent('sample.flag-answered', 'sample', {
+    after: z.strictObject({ column: z.string().nullable(), code: QualityFlagCode, answer: FlagAnswerKind }),
+    reason: z.string(),
   }),
 ] as const;

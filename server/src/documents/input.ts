@@ -151,6 +151,17 @@ export const ColumnQuality = z.strictObject({
   flags: z.array(z.string()),
 });
 
+/** A flag of the quality report, with the answer that stood when the version was frozen. */
+export const RaisedFlag = z.strictObject({
+  /** Null for what concerns the file as a whole. */
+  column: z.string().nullable(),
+  weight: z.enum(['stop', 'look', 'note']),
+  finding: z.string(),
+  /** Whether the column takes part in the definition. */
+  takesPart: z.boolean(),
+  answer: z.strictObject({ answer: z.enum(['accepted', 'not used']), reason: z.string(), by: z.string(), at: time }).nullable(),
+});
+
 const binCounts = z.strictObject({ rows: count, goods: z.number().nonnegative(), bads: z.number().nonnegative() });
 
 /** Counts by bin on the other partitions, in the order of `result.characteristics[].bins`, and the record of edits by hand. */
@@ -306,6 +317,8 @@ const parts = z.strictObject({
   windows: Windows.nullable(),
   sensitivity: Sensitivity.nullable(),
   quality: z.strictObject({ evidence: cited, rows: count, columns: z.array(ColumnQuality) }).nullable(),
+  /** Null where no quality report was made. */
+  qualityFlags: z.strictObject({ evidence: cited, madeAt: time, flags: z.array(RaisedFlag) }).nullable(),
   classing: z.strictObject({ evidence: cited, characteristics: z.array(ClassedCharacteristic) }).nullable(),
   outOfTime: OutOfTime,
   penaltyChoice: PenaltyChoice.nullable(),

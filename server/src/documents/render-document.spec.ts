@@ -214,6 +214,15 @@ describe('the document of a complete version', () => {
   });
 });
 
+describe('the flags of the quality report', () => {
+  it('stand with their answers, and those of columns that take no part are counted alone', async () => {
+    const words = wordsOf(await renderDocument(inventedInput(), { fixedDate }));
+    expect(words).toContain('accepted: A new channel was opened in');
+    expect(words).toContain('1 flag of 2 has no answer. 1 further flag is a note or of a column that takes no part.');
+    expect(words).not.toContain('Missing only for goods.');
+  }, 120_000);
+});
+
 describe('a document with much missing', () => {
   it('says "not evidenced" for each part that is not there, and covers out-of-time figures', async () => {
     const bare: DocumentInput = {
@@ -226,6 +235,7 @@ describe('a document with much missing', () => {
       waterfall: null,
       windows: null,
       quality: null,
+      qualityFlags: null,
       classing: null,
       outOfTime: { covered: true, openings: [] },
       penaltyChoice: null,
@@ -246,6 +256,7 @@ describe('a document with much missing', () => {
       'Waterfall from the rows of the file to the rows of the sample',
       'Source file',
       'Quality of the columns',
+      'Quality report',
       'Cross-validation',
       'Choice of the penalty',
       'Stability over resamples',

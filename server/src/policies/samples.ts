@@ -36,6 +36,9 @@ export function canDefineSample(person: Actor, sample: SampleStanding): Decision
   return sample.read ? allowed : forbidden('The file has not been read yet. Confirm how it is read first.');
 }
 
+/** Flags of the report are answered, and a missing report made, by those who develop the model. */
+export const canAnswerFlag = (person: Actor, sample: SampleStanding): Decision => canDevelopModel(person, sample.model);
+
 export function canDiscardSample(person: Actor, sample: SampleStanding): Decision {
   const develops = canDevelopModel(person, sample.model);
   if (!develops.allowed) return develops;

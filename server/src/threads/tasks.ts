@@ -9,6 +9,7 @@ import { freezeVersion } from './freeze-version';
 import { hashPassword, verifyPassword } from './passwords';
 import { prepareSample } from './prepare-sample';
 import { profileStored } from './profile-stored';
+import { qualityColumn } from './quality-column';
 import { resampleVersion } from './study-stability';
 
 /**
@@ -30,6 +31,7 @@ export const tasks = {
   'sample.code': codeSegment,
   'sample.prepare': prepareSample,
   'sample.profile': profileStored,
+  'sample.quality': qualityColumn,
   'scorecard.build': buildScorecard,
   'version.freeze': freezeVersion,
   'version.resample': resampleVersion,

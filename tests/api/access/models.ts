@@ -58,6 +58,10 @@ export const sampleRows: readonly AccessRow[] = [
   readsModel(`GET ${ofSample}/definitions`),
   readsModel(`GET ${ofSample}/definitions/:definitionId`),
   readsModel(`GET ${ofSample}/definitions/:definitionId/balance`),
+  readsModel(`GET ${ofSample}/quality`),
+  { ...readsModel(`GET ${ofSample}/quality/column`), query: () => 'column=age' },
+  developsModel(`POST ${ofSample}/quality`),
+  developsModel(`POST ${ofSample}/quality/answers`),
   // Last of its kind: whoever may, discards the sample.
   { ...developsModel(`DELETE ${ofSample}`), ...spare },
 ];

@@ -92,7 +92,47 @@ export function writeData(writer: Writer): void {
       );
     }
   }
+  writeFlags(writer);
   writer.authorTexts(6, ['Suitability of the sources']);
+}
+
+/** What the quality report raised of columns that take part, and how each was answered. */
+function writeFlags(writer: Writer): void {
+  const { qualityFlags } = writer.input;
+  writer.heading('Flags of the quality report');
+  if (qualityFlags === null) {
+    writer.notEvidenced('Quality report');
+    return;
+  }
+  const shown = qualityFlags.flags.filter(({ takesPart, weight, answer }) => takesPart && (weight !== 'note' || answer !== null));
+  const apart = qualityFlags.flags.length - shown.length;
+  const rest = `${plural(apart, 'further flag')} ${apart === 1 ? 'is' : 'are'} a note or of a column that takes no part.`;
+  if (shown.length === 0) {
+    writer.text(`No flag asks for an answer ${writer.cite(qualityFlags.evidence)}. ${apart > 0 ? rest : ''}`.trim());
+    return;
+  }
+  const open = shown.filter(({ answer }) => answer === null).length;
+  writer.table(
+    'Flags and answers',
+    qualityFlags.evidence,
+    {
+      columns: [
+        { title: 'Column', grow: 1 },
+        { title: 'Flag', grow: 3 },
+        { title: 'Answer', grow: 3 },
+        { title: 'By', grow: 1 },
+      ],
+      rows: shown.map(({ column, finding, answer }) => ({
+        cells: [
+          column === null ? 'The file' : writer.label(column),
+          finding,
+          answer === null ? 'no answer' : `${answer.answer}: ${answer.reason}`,
+          answer === null ? '–' : `${answer.by}, ${timeText(answer.at)}`,
+        ],
+      })),
+    },
+    `${open === 0 ? 'Every one is answered.' : `${plural(open, 'flag')} of ${whole(shown.length)} ${open === 1 ? 'has' : 'have'} no answer.`}${apart > 0 ? ` ${rest}` : ''}`,
+  );
 }
 
 function writeSpecialCodes(writer: Writer): void {

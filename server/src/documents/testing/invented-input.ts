@@ -186,6 +186,32 @@ export function inventedInput(count = 12): DocumentInput {
         flags: place === 2 ? ['drifts in the last half-year'] : [],
       })),
     },
+    qualityFlags: {
+      evidence: 'E-1',
+      madeAt: '2026-11-03T09:30:00.000Z',
+      flags: [
+        {
+          column: null,
+          weight: 'look',
+          finding: '12 rows equal an earlier one in every column (0.0 %).',
+          takesPart: true,
+          answer: null,
+        },
+        {
+          column: result.characteristics[2].column,
+          weight: 'look',
+          finding: 'PSI 0.31 in 2025-02 against the first year; by chance it would stay below 0.012.',
+          takesPart: true,
+          answer: {
+            answer: 'accepted',
+            reason: 'A new channel was opened in January; its applicants are meant to be scored.',
+            by: 'Modeller at Saltmarsh Mutual',
+            at: '2026-11-04T10:00:00.000Z',
+          },
+        },
+        { column: 'collections_fee', weight: 'look', finding: 'Missing only for goods.', takesPart: false, answer: null },
+      ],
+    },
     classing: {
       evidence: 'E-2',
       characteristics: result.characteristics.map(({ column, bins }, place) => ({

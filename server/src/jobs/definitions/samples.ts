@@ -1,4 +1,5 @@
 import { ConfirmationResult } from '@tallystone/contracts/samples/definition';
+import { QualityResult } from '@tallystone/contracts/samples/quality';
 import { ReadingChoices, ReadingResult } from '@tallystone/contracts/samples/reading';
 import { z } from 'zod';
 import { defineJob } from './job';
@@ -17,4 +18,12 @@ export const confirmSampleJob = defineJob({
   queue: 'long',
   payload: z.strictObject({ sampleId: z.uuid(), revision: z.int() }),
   result: ConfirmationResult,
+});
+
+/** Makes the quality report of a confirmed definition. */
+export const reportQualityJob = defineJob({
+  kind: 'sample.quality',
+  queue: 'long',
+  payload: z.strictObject({ definitionId: z.uuid() }),
+  result: QualityResult,
 });

@@ -4,7 +4,7 @@ import { classBinning, completeBinning, correlateBinning } from './binnings';
 import { makeDocument } from './documents';
 import { fitPenaltyPath } from './fits';
 import { verifyRecord } from './record';
-import { confirmSample, readSample } from './samples';
+import { confirmSample, readSample, reportQuality } from './samples';
 
 /** Everything a worker can do. An entity adds its handlers here. */
-export const handlers: readonly Handler[] = [verifyRecord, classBinning, correlateBinning, completeBinning, readSample, confirmSample, fitPenaltyPath, freezeVersion, replicateVersion, studyVersionStability, makeDocument];
+export const handlers: readonly Handler[] = [verifyRecord, classBinning, correlateBinning, completeBinning, readSample, confirmSample, reportQuality, fitPenaltyPath, freezeVersion, replicateVersion, studyVersionStability, makeDocument];

@@ -1,6 +1,7 @@
 import { confirmDefinition } from '../../services/samples/confirm-draft';
 import { abandonReading, readFile } from '../../services/samples/read-file';
-import { confirmSampleJob, readSampleJob } from '../definitions/samples';
+import { makeReport, storeReport } from '../../services/samples/quality/make-report';
+import { confirmSampleJob, readSampleJob, reportQualityJob } from '../definitions/samples';
 import { handle } from '../handler';
 
 export const readSample = handle(readSampleJob, {
@@ -9,3 +10,11 @@ export const readSample = handle(readSampleJob, {
 });
 
 export const confirmSample = handle(confirmSampleJob, { work: (payload, run) => confirmDefinition(payload, run) });
+
+/** Nothing is stored before the last column is counted, so an attempt that ends early leaves nothing behind. */
+export const reportQuality = handle(reportQualityJob, {
+  async work({ definitionId }, run) {
+    const made = await makeReport(definitionId, run);
+    await run.finish((tx) => storeReport(run.context.sequelize, tx, run.run.id, made));
+  },
+});

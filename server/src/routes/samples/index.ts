@@ -1,6 +1,7 @@
 import type { Route } from '../http/route';
 import { definitionRoutes } from './definitions';
 import { fileRoutes } from './files';
+import { qualityRoutes } from './quality';
 import { uploadRoutes } from './uploads';
 
-export const sampleRoutes = (): Route[] => [...uploadRoutes(), ...fileRoutes(), ...definitionRoutes()];
+export const sampleRoutes = (): Route[] => [...uploadRoutes(), ...fileRoutes(), ...definitionRoutes(), ...qualityRoutes()];

@@ -1,5 +1,6 @@
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
 import type { SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
+import type { QualityReport } from '@tallystone/contracts/samples/quality';
 import type { Result } from '@tallystone/contracts/result/types';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import type { VersionTextKey, VersionTexts } from '@tallystone/contracts/versions/schema';
@@ -29,6 +30,8 @@ interface SampleEvidence {
   receivedAt: string;
   definition: SampleDefinitionContent;
   quality: { name: string; kind: string; profile: ColumnProfile }[];
+  /** Absent in versions frozen before there were reports, null where none was made. */
+  report?: QualityReport | null;
 }
 interface ClassingEvidence {
   edits: { column: string; edit: string; reason: { code: string; text: string } | null; by: string; at: string }[];
@@ -160,6 +163,7 @@ export async function gatherDocument(context: Context, versionId: string, person
       rows: sample.content.rows,
       columns: sample.content.quality.map(({ name, kind, profile }) => qualityOf(name, kind, profile, sample.content.definition)),
     },
+    qualityFlags: sample && flagsOf(sample),
     classing: classing && {
       evidence: classing.number,
       characteristics: classing.content.bins.map(({ column, holdOut, outOfTime }) => ({
@@ -267,6 +271,17 @@ function qualityOf(name: string, kind: string, profile: ColumnProfile, definitio
     mostFrequent: most?.value ?? null,
     mostFrequentRows: most?.count ?? 0,
     flags: profile.flags.map(({ finding }) => finding),
+  };
+}
+
+/** What the quality report raised and how it was answered when the version was frozen. */
+function flagsOf({ content, number }: { content: SampleEvidence; number: string }): DocumentInput['qualityFlags'] {
+  if (!content.report) return null;
+  const out = new Set(content.report.columns.filter(({ role }) => role === 'not used' || role === 'identifier').map(({ column }) => column));
+  return {
+    evidence: number,
+    madeAt: content.report.madeAt,
+    flags: content.report.flags.map(({ column, weight, finding, answer }) => ({ column, weight, finding, answer, takesPart: column === null || !out.has(column) })),
   };
 }
 

@@ -16,6 +16,7 @@ import { balanceOf, storeBalance } from './balance';
 import { carryOut } from './carry-out';
 import { type FoundDraft, findDraft, presentDraft } from './draft';
 import { findSample } from './find-sample';
+import { startReport } from './quality/start-report';
 
 /**
  * Starts the run that confirms the draft as it was last read.
@@ -122,6 +123,8 @@ export async function confirmDefinition(payload: { sampleId: string; revision: n
         outOfTime: result.outOfTime.rows,
       },
     });
+    // Nobody waits for the report, so it is a run of its own.
+    await startReport(context, tx, { definitionId: id, modelId: sample.modelId, person: { id: run.run.personId } });
     return { definitionId: id, number };
   });
 }

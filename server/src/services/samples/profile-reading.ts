@@ -3,7 +3,8 @@ import { guessOutcome } from '../../profiling/guess-outcome';
 import type { OutcomeCodes } from '../../profiling/leakage';
 import { headingNamesOutcome } from '../../profiling/suggest-role';
 import { readContents, readStoredColumn } from '../../storage/columnStore';
-import { runInThread, threadCount } from '../../threads/run-in-thread';
+import { runInThread } from '../../threads/run-in-thread';
+import { inTurn } from './in-turn';
 import type { ReadRows, Reading } from './read-rows';
 
 /**
@@ -46,17 +47,4 @@ export async function profileReading(
   });
   await inTurn(rest, (position) => profile(position, shared));
   return positions.flatMap((position) => profiles.get(position) ?? []);
-}
-
-/** Works through the positions, one more at a time than there are threads, so that none waits for the database. */
-async function inTurn(positions: readonly number[], work: (position: number) => Promise<void>): Promise<void> {
-  const left = [...positions];
-  const workers = Array.from({ length: threadCount() + 1 }, async () => {
-    for (let next = left.shift(); next !== undefined; next = left.shift()) await work(next);
-  });
-  // After a failure nothing new is begun.
-  await Promise.all(workers).catch((failure: unknown) => {
-    left.length = 0;
-    throw failure;
-  });
 }

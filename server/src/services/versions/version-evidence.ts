@@ -1,5 +1,6 @@
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
+import { reportOf } from '../samples/quality/read-report';
 import { codeVersionFacts } from './code-version';
 import type { NewEvidence } from './evidence';
 import type { Freezing } from './freeze';
@@ -51,7 +52,7 @@ export async function versionEvidence(
         rounding: loaded.settings.scaling.rounding,
       },
     },
-    { kind: 'sample', title: 'Raw file, exclusions, outcome and quality of the columns', content: sample },
+    { kind: 'sample', title: 'Raw file, exclusions, outcome and quality of the columns', content: { ...sample, report: await reportOf(sequelize, definition.id, tx) } },
     { kind: 'classing', title: 'Bins, counts by partition and edits by hand', content: { edits, characteristics: summaries, bins: frozen.figures.bins } },
     {
       kind: 'fit',

@@ -34,7 +34,7 @@ import { WorksRule } from './works-rule';
             </p>
           }
         </div>
-        <ts-works-rule [steps]="current.steps()" />
+        <ts-works-rule class="ts-no-print" [steps]="current.steps()" />
       </div>
       @if (current.model()) {
         <router-outlet />

@@ -40,6 +40,11 @@ export const dataIntakeRoutes: Routes = [
         canDeactivate: [savesFirst],
         loadComponent: () => import('./pages/definition-page').then((m) => m.DefinitionPage),
       },
+      {
+        path: 'quality',
+        title: 'Data quality',
+        loadComponent: () => import('./pages/quality-page').then((m) => m.QualityPage),
+      },
     ],
   },
 ];

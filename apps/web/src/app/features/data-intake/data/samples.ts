@@ -11,6 +11,14 @@ import type {
   DraftCheck,
   DraftContent,
 } from '@tallystone/contracts/samples/definition';
+import type {
+  ColumnQuality,
+  ColumnQualityDetail,
+  NewFlagAnswer,
+  QualityFlag,
+  QualityReport,
+  QualityState,
+} from '@tallystone/contracts/samples/quality';
 import type { Preview, PreviewRequest, ReadingChoices } from '@tallystone/contracts/samples/reading';
 import type { Sample, SampleList, SampleSummary, UploadSummary } from '@tallystone/contracts/samples/schema';
 import type { Run } from '@tallystone/contracts/runs/schema';
@@ -20,6 +28,8 @@ import { type Tagged, idempotent, readTagged, saveTagged } from '../../../core/h
 export type {
   ColumnList,
   ColumnProfile,
+  ColumnQuality,
+  ColumnQualityDetail,
   ColumnRole,
   Definition,
   DefinitionCounts,
@@ -28,6 +38,9 @@ export type {
   DraftCheck,
   DraftContent,
   Preview,
+  QualityFlag,
+  QualityReport,
+  QualityState,
   ReadingChoices,
   Run,
   Sample,
@@ -63,6 +76,22 @@ export function balanceOf(
   return httpResource<PartitionBalance>(() => {
     const id = definitionId();
     return id === null ? undefined : `${of(modelId(), sampleId())}/definitions/${id}/balance`;
+  });
+}
+
+export function qualityOf(modelId: () => string, sampleId: () => string): HttpResourceRef<QualityState | undefined> {
+  return httpResource<QualityState>(() => `${of(modelId(), sampleId())}/quality`);
+}
+
+/** One column of the report; nothing is read while `column` gives null. */
+export function columnQualityOf(
+  modelId: () => string,
+  sampleId: () => string,
+  column: () => string | null,
+): HttpResourceRef<ColumnQualityDetail | undefined> {
+  return httpResource<ColumnQualityDetail>(() => {
+    const name = column();
+    return name === null ? undefined : { url: `${of(modelId(), sampleId())}/quality/column`, params: { column: name } };
   });
 }
 
@@ -103,5 +132,13 @@ export class Samples {
     return firstValueFrom(
       this.http.post<Run>(`${of(modelId, sampleId)}/definitions`, { revision }, { headers: idempotent(key) }),
     );
+  }
+
+  makeQuality(modelId: string, sampleId: string, key: string): Promise<Run> {
+    return firstValueFrom(this.http.post<Run>(`${of(modelId, sampleId)}/quality`, null, { headers: idempotent(key) }));
+  }
+
+  answer(modelId: string, sampleId: string, answer: NewFlagAnswer): Promise<QualityState> {
+    return firstValueFrom(this.http.post<QualityState>(`${of(modelId, sampleId)}/quality/answers`, answer));
   }
 }

@@ -51,7 +51,7 @@ interface Row {
         [modelId]="modelId()"
         [sampleId]="sampleId()"
         [fileName]="sample.value()?.fileName ?? ''"
-        [open]="['reading', 'columns', 'definition']"
+        [open]="['reading', 'columns', 'definition', 'quality']"
       />
       <ts-page-header title="Columns" [finding]="columns.value()?.finding ?? null">
         @if (draft.saveState() !== 'stale') {

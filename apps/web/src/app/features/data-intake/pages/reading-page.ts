@@ -112,7 +112,7 @@ export class ReadingPage {
   });
   protected readonly busy = computed(() => this.underWay() || this.looking.busy() || this.starting.busy());
   protected readonly open = computed(() =>
-    this.sample.hasValue() && this.sample.value().rows !== null ? ['reading', 'columns', 'definition'] : ['reading'],
+    this.sample.hasValue() && this.sample.value().rows !== null ? ['reading', 'columns', 'definition', 'quality'] : ['reading'],
   );
   protected readonly finding = computed(() => {
     const preview = this.preview();

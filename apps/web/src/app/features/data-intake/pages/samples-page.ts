@@ -18,6 +18,12 @@ import { Uploads } from '../data/uploads';
 import { samplesFinding } from '../ui/findings';
 import { UploadPanel } from '../ui/upload-panel';
 
+const runTitles: Readonly<Record<string, string>> = {
+  'sample.read': 'Reading the file',
+  'sample.confirm': 'Confirming the definition',
+  'sample.quality': 'Making the quality report',
+};
+
 /** Samples of the model: bring in a file, take up one that arrived in part, open one. */
 @Component({
   selector: 'ts-samples-page',
@@ -59,7 +65,7 @@ import { UploadPanel } from '../ui/upload-panel';
         </section>
       }
       @for (run of reading(); track run.id) {
-        <ts-run-progress [run]="run" [title]="run.kind === 'sample.read' ? 'Reading the file' : 'Confirming the definition'" />
+        <ts-run-progress [run]="run" [title]="runWords(run.kind)" />
       }
       @if (samples(); as rows) {
         @if (rows.length > 0) {
@@ -154,6 +160,7 @@ export class SamplesPage {
   }
 
   protected readonly byId = (row: { id: string }): string => row.id;
+  protected readonly runWords = (kind: string): string => runTitles[kind] ?? 'Work on this model';
 
   protected tone(row: SampleSummary): StatusTone {
     if (row.state === 'reading') return 'under-way';

@@ -1,7 +1,7 @@
 import { ChangeDetectionStrategy, Component, input } from '@angular/core';
 import { RouterLink, RouterLinkActive } from '@angular/router';
 
-/** The three pages of one sample, in the order of the work, with the way back to the list. */
+/** The pages of one sample, in the order of the work, with the way back to the list. */
 @Component({
   selector: 'ts-sample-steps',
   changeDetection: ChangeDetectionStrategy.OnPush,
@@ -74,5 +74,6 @@ export class SampleSteps {
     { path: 'reading', label: 'Reading' },
     { path: 'columns', label: 'Columns' },
     { path: 'definition', label: 'Definition' },
+    { path: 'quality', label: 'Quality' },
   ];
 }

@@ -1,0 +1,45 @@
+import type { ColumnQuality, QualityFlag } from '@tallystone/contracts/samples/quality';
+
+/** Whether a flag still asks somebody: more than a note, without an answer, of the file or of a column that takes part. */
+export function waits(flag: QualityFlag, roles: ReadonlyMap<string, ColumnQuality['role']>): boolean {
+  if (flag.weight === 'note' || flag.answer) return false;
+  const role = flag.column === null ? null : roles.get(flag.column);
+  return role !== 'not used' && role !== 'identifier';
+}
+
+const words: Partial<Record<QualityFlag['code'], string>> = {
+  'duplicate-rows': 'Duplicate rows',
+  'months-without-rows': 'Months without rows',
+  'leakage-value': 'Leakage? It predicts very well',
+  'missing-one-outcome': 'Leakage? Missing for one outcome only',
+  'one-value-per-outcome': 'Leakage? One value per outcome',
+  'missing-drift': 'Missing share changes',
+  drift: 'Drift',
+  outliers: 'Outliers',
+  constant: 'Constant',
+  'near-constant': 'Nearly constant',
+  'all-missing': 'All missing',
+  'mostly-missing': 'Mostly missing',
+  'near-unique': 'Nearly all different',
+  'special-code-suspected': 'Special codes?',
+  'looks-like-identifier': 'Identifies applicants',
+  'looks-like-email': 'E-mail addresses',
+  'looks-like-name': 'Names of people',
+  'looks-like-protected': 'Protected?',
+  'repeated-identifiers': 'Repeated identifiers',
+  'unreadable-numbers': 'Values that are no numbers',
+  'numbers-as-text': 'Numbers as text',
+  'doubtful-dates': 'Doubtful dates',
+};
+
+export const flagTitle = ({ code }: Pick<QualityFlag, 'code'>): string => words[code] ?? code.replaceAll('-', ' ');
+
+/** Open ones first, then by weight, in the order of the file. */
+export function inOrder(flags: readonly QualityFlag[], roles: ReadonlyMap<string, ColumnQuality['role']>): QualityFlag[] {
+  const weights = { stop: 0, look: 1, note: 2 } as const;
+  const rank = (flag: QualityFlag): number => (waits(flag, roles) ? 0 : 10) + weights[flag.weight];
+  return flags
+    .map((flag, place) => ({ flag, place }))
+    .sort((a, b) => rank(a.flag) - rank(b.flag) || a.place - b.place)
+    .map(({ flag }) => flag);
+}
