@@ -22,9 +22,10 @@ import { fits } from '../ui/months-view';
         <ts-months-figure [fine]="fine()" [bins]="bins()" [reading]="reading()" [months]="shown" />
         <p class="ts-caption">
           Bar: development, circle: hold-out{{ fine().outOfTime ? ', diamond: out-of-time' : '' }}, each with its 95 % interval
-          from its own counts. Broken line: the bin over all of development. Hollow: fewer than {{ fewest }} goods or bads, which
-          say little (common practice). How far WOE moves is a standard deviation between months beyond chance, the level of each
-          month taken out (method of moments, D. A. Williams, 1982; from memory).{{ undatedWords() }}
+          from its own counts. Broken line: the bin over all of development; every strip has the same scale about its own line.
+          Hollow: fewer than {{ fewest }} goods or bads, which say little (common practice). How far WOE moves is a standard
+          deviation between months beyond chance, the level of each month taken out (method of moments, D. A. Williams, 1982; from
+          memory).{{ undatedWords() }}
         </p>
       } @else {
         <p class="ts-second">No column of this sample is the application date, so that its rows cannot be told apart by month.</p>

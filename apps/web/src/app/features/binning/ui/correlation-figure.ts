@@ -22,7 +22,11 @@ const labelled = 40;
     <ts-figure title="Correlation of WOE, near ones side by side" [finding]="finding()" [table]="table()">
       <div (tsWidth)="wide.set($event)">
         @let drawing = geometry();
-        <svg [attr.viewBox]="'0 0 ' + drawing.size + ' ' + drawing.size" [attr.width]="drawing.size" [attr.height]="drawing.size">
+        <svg
+          [attr.viewBox]="'0 0 ' + drawing.width + ' ' + drawing.height"
+          [attr.width]="drawing.width"
+          [attr.height]="drawing.height"
+        >
           @for (line of drawing.lines; track $index) {
             <svg:line class="rule" [attr.x1]="drawing.left" [attr.x2]="line.x2" [attr.y1]="line.y" [attr.y2]="line.y" />
           }
@@ -49,6 +53,9 @@ const labelled = 40;
     </ts-figure>
   `,
   styles: `
+    svg {
+      display: block;
+    }
     .rule {
       stroke: var(--ts-hairline);
     }
@@ -79,9 +86,11 @@ export class CorrelationFigure {
     const names = order.map((place) => characteristics[place].column);
     const narrow = this.wide() < 520;
     const longest = Math.min(narrow ? 14 : 26, Math.max(4, ...names.map(({ length }) => length)));
-    const left = names.length > labelled ? 30 : longest * 7 + 14;
+    const left = names.length > labelled ? 30 : longest * 7.6 + 14;
     const size = Math.min(this.wide(), 900);
-    const step = Math.max(3, Math.min(26, (size - left - 26) / Math.max(1, names.length)));
+    // Names need their lines: where the window is narrower than that, the drawing scrolls inside its frame.
+    const least = names.length > labelled ? 3 : 17;
+    const step = Math.max(least, Math.min(26, (size - left - 26) / Math.max(1, names.length)));
     let [together, against] = ['', ''];
     const places = new Map<string, { x: number; y: number }>();
     for (let j = 1; j < order.length; j++) {
@@ -99,7 +108,8 @@ export class CorrelationFigure {
     }
     return {
       left,
-      size: Math.max(left + names.length * step + 26, 160),
+      width: Math.max(left + names.length * step + 26, 160),
+      height: names.length * step + 12,
       step,
       together,
       against,

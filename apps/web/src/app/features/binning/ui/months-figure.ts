@@ -45,11 +45,12 @@ import { type Measure, type PeriodRow, type Span, drawMonths, monthsFinding, per
           @for (strip of drawing.strips; track $index; let first = $first) {
             <svg:g>
               <svg:title>{{ strip.full }}</svg:title>
-              <svg:text class="ts-label" x="0" [attr.y]="(strip.top + strip.bottom) / 2 + 5">{{ strip.label }}</svg:text>
+              <svg:text class="ts-label" x="0" [attr.y]="strip.level - 1">{{ strip.label }}</svg:text>
+              <svg:text x="0" [attr.y]="strip.level + 17">{{ strip.levelWords }}</svg:text>
             </svg:g>
             @if (first) {
-              <svg:text class="end" [attr.x]="drawing.left - 6" [attr.y]="strip.top + 9">{{ drawing.ends[0] }}</svg:text>
-              <svg:text class="end" [attr.x]="drawing.left - 6" [attr.y]="strip.bottom">{{ drawing.ends[1] }}</svg:text>
+              <svg:text class="end" [attr.x]="drawing.left - 6" [attr.y]="strip.top + 10">{{ drawing.ends[0] }}</svg:text>
+              <svg:text class="end" [attr.x]="drawing.left - 6" [attr.y]="strip.bottom + 2">{{ drawing.ends[1] }}</svg:text>
             }
             <svg:line
               class="bound"
@@ -58,15 +59,13 @@ import { type Measure, type PeriodRow, type Span, drawMonths, monthsFinding, per
               [attr.y1]="strip.bottom + 6"
               [attr.y2]="strip.bottom + 6"
             />
-            @if (strip.level !== null) {
-              <svg:line
-                class="level"
-                [attr.x1]="drawing.left"
-                [attr.x2]="drawing.right"
-                [attr.y1]="strip.level"
-                [attr.y2]="strip.level"
-              />
-            }
+            <svg:line
+              class="level"
+              [attr.x1]="drawing.left"
+              [attr.x2]="drawing.right"
+              [attr.y1]="strip.level"
+              [attr.y2]="strip.level"
+            />
             @for (mark of strip.marks; track mark.key) {
               @if (mark.interval; as interval) {
                 <svg:line

@@ -65,13 +65,22 @@ describe('bins by month', () => {
         expect(mark.y).toBeLessThanOrEqual(bottom);
         expect(mark.interval === null).toBe(mark.small);
         // Every quarter is like all of development: its mark lies on the line, but for what hold-out is and smoothing adds.
-        if (mark.partition === 'development') expect(Math.abs(mark.y - (level ?? 0))).toBeLessThan(1);
+        if (mark.partition === 'development') expect(Math.abs(mark.y - level)).toBeLessThan(1);
       }
       expect(marks.map(({ x }) => x)).toSatisfy((all: number[]) => all.every((x) => x > drawing.left && x < drawing.right));
     }
     const narrow = drawMonths(reading, readPeriods(fine, bins, counted, 'month'), { width: 358, measure: 'badRate' });
     expect(narrow.ticks.length).toBeLessThanOrEqual(5);
-    expect(narrow.ends[1]).toMatch(/%$/);
+    expect(narrow.ends[1]).toMatch(/^\u2212\d+\u202F%$/);
+    // A bin without rows has no strip.
+    const none = {
+      ...counted,
+      development: [],
+      holdOut: counted.holdOut.map((month) => ({ ...month, rows: month.rows.map((n, slot) => (slot === 11 ? 0 : n)) })),
+    };
+    expect(drawMonths(reading, readPeriods(fine, bins, none, 'month'), { width: 900, measure: 'woe' }).strips).toHaveLength(
+      reading.bins.length - 1,
+    );
   });
 
   it('has the same numbers as a table', () => {

@@ -10,8 +10,7 @@ import {
   type Period,
   type PeriodCell,
 } from '@tallystone/numeric/bench';
-import { scaleLinear, type ScaleLinear } from 'd3-scale';
-import { binWords, count, plural, share, woe } from '../../../ui/numbers';
+import { MINUS, binWords, count, plural, share, signed, woe } from '../../../ui/numbers';
 import { type Partition, partitionName } from '../../../ui/partition-mark';
 
 /** The figure of bins by month: what it shows and where everything stands, in pixels. Pure, so that it can be tested without drawing. */
@@ -19,7 +18,7 @@ import { type Partition, partitionName } from '../../../ui/partition-mark';
 export type Span = 'month' | 'quarter';
 export type Measure = 'woe' | 'badRate';
 
-const sizes = { right: 10, top: 6, strip: 58, gap: 12, axis: 26, radius: 3.4 } as const;
+const sizes = { right: 24, top: 6, strip: 56, gap: 12, axis: 26, radius: 3.4 } as const;
 
 /** True where the counts are of the slots that the fine classes have now: a split makes more of them. */
 export function fits(fine: FineClasses, months: CharacteristicMonths): boolean {
@@ -85,8 +84,9 @@ export interface Strip {
   readonly full: string;
   readonly top: number;
   readonly bottom: number;
-  /** Where the bin stands over all of development. */
-  readonly level: number | null;
+  /** Where the bin stands over all of development, and in words. */
+  readonly level: number;
+  readonly levelWords: string;
   readonly marks: readonly DrawnPeriod[];
 }
 
@@ -98,7 +98,7 @@ export interface MonthsDrawing {
   readonly strips: readonly Strip[];
   readonly ticks: readonly { readonly x: number; readonly text: string }[];
   readonly axis: number;
-  /** Values at the top and the bottom of each strip, written. */
+  /** How far the top and the bottom of each strip stand off its level, written. */
   readonly ends: readonly [string, string];
   readonly radius: number;
 }
@@ -112,27 +112,32 @@ const limitsOf = (cell: PeriodCell, measure: Measure): readonly [number, number]
   return lower === null || upper === null ? null : [lower, upper];
 };
 
-/** A strip for each bin, periods from left to right, one scale for all strips: what can be read decides it, small cells stay inside. */
+/**
+ * A strip for each bin that has rows, periods from left to right. Each strip is centred on what the bin is over all of development, and all have the
+ * same scale: what can be read decides it, small cells stay inside.
+ */
 export function drawMonths(
   reading: BenchReading,
   periods: readonly Period[],
   { width, measure }: { readonly width: number; readonly measure: Measure },
 ): MonthsDrawing {
   const names = [...new Set(periods.map(({ label }) => label))].sort();
-  const left = width < 560 ? 92 : 150;
+  const left = width < 560 ? 104 : 150;
   const right = width - sizes.right;
   const step = (right - left) / Math.max(1, names.length);
   const at = new Map(names.map((name, place) => [name, left + (place + 0.5) * step]));
-  const scale = valueScale(reading, periods, measure);
-  const [low, high] = scale.domain();
+  const reach = reachOf(reading, periods, measure);
   const radius = Math.max(1.6, Math.min(sizes.radius, step / 3));
   const aside: Record<Partition, number> = { development: -Math.min(4, step / 4), holdOut: Math.min(4, step / 4), outOfTime: 0 };
-  const longest = width < 560 ? 13 : 21;
-  const strips = reading.bins.map(({ label, figures }, bin): Strip => {
-    const top = sizes.top + bin * (sizes.strip + sizes.gap);
-    const place = (value: number): number => top + sizes.strip * (1 - scale(Math.max(low, Math.min(high, value))));
-    const full = binWords(label);
-    const over = measure === 'woe' ? figures.development?.woe : figures.development?.badRate;
+  const longest = width < 560 ? 14 : 21;
+  const shown = reading.bins.flatMap((_, bin) => (periods.some(({ cells }) => cells[bin].rows > 0) ? [bin] : []));
+  const strips = shown.map((bin, place): Strip => {
+    const top = sizes.top + place * (sizes.strip + sizes.gap);
+    const level = levelOf(reading, bin, measure);
+    const middle = top + sizes.strip / 2;
+    const heightOf = (value: number): number =>
+      middle - (sizes.strip / 2) * Math.max(-1, Math.min(1, (value - (level ?? 0)) / reach));
+    const full = binWords(reading.bins[bin].label);
     const marks = periods.flatMap(({ label: period, partition, cells }): DrawnPeriod[] => {
       const cell = cells[bin];
       const value = valueOf(cell, measure);
@@ -143,9 +148,9 @@ export function drawMonths(
           key: `${partition}|${period}`,
           partition,
           x: (at.get(period) ?? left) + aside[partition],
-          y: place(value),
+          y: heightOf(value),
           small: cell.small,
-          interval: limits && [place(limits[0]), place(limits[1])],
+          interval: limits && [heightOf(limits[0]), heightOf(limits[1])],
           label: cellWords(full, period, partition, cell),
         },
       ];
@@ -155,7 +160,8 @@ export function drawMonths(
       full,
       top,
       bottom: top + sizes.strip,
-      level: over == null ? null : place(over),
+      level: middle,
+      levelWords: level === null ? '' : `${measure === 'woe' ? 'WOE ' : ''}${written[measure](level)}`,
       marks,
     };
   });
@@ -168,33 +174,34 @@ export function drawMonths(
     strips,
     ticks: shownTicks(names, at, step),
     axis,
-    ends: [written[measure](high), written[measure](low)],
+    ends: measure === 'woe' ? [signed(reach, 1), signed(-reach, 1)] : [`+${share(reach, 0)}`, `${MINUS}${share(reach, 0)}`],
     radius,
   };
+}
+
+const levelOf = ({ bins }: BenchReading, bin: number, measure: Measure): number | null => {
+  const over = bins[bin].figures.development;
+  return (measure === 'woe' ? over?.woe : over?.badRate) ?? null;
+};
+
+/** How far what can be read stands off its level, at most. */
+function reachOf(reading: BenchReading, periods: readonly Period[], measure: Measure): number {
+  let reach = measure === 'woe' ? 0.2 : 0.02;
+  for (const { cells } of periods) {
+    cells.forEach((cell, bin) => {
+      const level = levelOf(reading, bin, measure);
+      const value = valueOf(cell, measure);
+      if (level === null || value === null || cell.small) return;
+      for (const one of [value, ...(limitsOf(cell, measure) ?? [])]) reach = Math.max(reach, Math.abs(one - level));
+    });
+  }
+  return reach;
 }
 
 function cellWords(bin: string, period: string, partition: Partition, cell: PeriodCell): string {
   const interval = cell.woeLower === null ? '' : ` (${woe(cell.woeLower)} to ${woe(cell.woeUpper)})`;
   const few = cell.small ? `; fewer than ${fewestToRead} goods or bads, not to be read alone` : '';
   return `${bin}, ${period}, ${partitionName(partition).toLowerCase()}: WOE ${woe(cell.woe)}${interval}, bad rate ${share(cell.badRate)} of ${plural(cell.rows, 'row')}${few}`;
-}
-
-function valueScale(reading: BenchReading, periods: readonly Period[], measure: Measure): ScaleLinear<number, number> {
-  const values = reading.bins.flatMap(({ figures }) => {
-    const over = measure === 'woe' ? figures.development?.woe : figures.development?.badRate;
-    return over == null ? [] : [over];
-  });
-  for (const { cells } of periods) {
-    for (const cell of cells) {
-      const value = valueOf(cell, measure);
-      if (value !== null && !cell.small) values.push(value, ...(limitsOf(cell, measure) ?? []));
-    }
-  }
-  const [low, high] = values.length > 0 ? [Math.min(...values), Math.max(...values)] : [0, 1];
-  const pad = Math.max(0.02, (high - low) * 0.05);
-  return scaleLinear()
-    .domain([measure === 'badRate' ? Math.max(0, low - pad) : low - pad, high + pad])
-    .range([0, 1]);
 }
 
 /** As many names of periods as there is room for, the first among them. */
