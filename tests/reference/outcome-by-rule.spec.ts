@@ -26,15 +26,13 @@ it('a rule on days past due and months on book replays from the raw file to what
   try {
     const place = (name: string): string => join(folder, name);
     writeFileSync(place('sample.csv'), csv);
-    const [ruled, valued] = [
-      ['rule', byRule],
-      ['values', byValues],
-    ].map(([name, stated]) => {
+    const replayed = (name: string, stated: object): Result => {
       writeFileSync(place(`${name}.json`), JSON.stringify(specificationOf({ outcome: stated, partition })));
       const args = ['--specification', place(`${name}.json`), '--data', place('sample.csv'), '--out', place(`${name}-result.json`)];
       execFileSync(process.execPath, ['--import', 'tsx', 'server/src/cli/replicate.ts', ...args], { encoding: 'utf8' });
       return JSON.parse(readFileSync(place(`${name}-result.json`), 'utf8')) as Result;
-    });
+    };
+    const [ruled, valued] = [replayed('rule', byRule), replayed('values', byValues)];
     const { development, excluded } = ruled.counts;
     expect(development.bads).toBeGreaterThan(20);
     expect(development.indeterminates).toBeGreaterThan(0);

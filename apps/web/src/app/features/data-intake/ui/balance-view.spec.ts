@@ -29,6 +29,8 @@ describe('the balance of the partitions', () => {
     const list = [entry('age', 0.01, 0.02), entry('home', 0.005, 0.12)];
     expect(byIndex(list).map(({ column }) => column)).toEqual(['home', 'age']);
     expect(movedMost(list[1])).toBe('rent: 24.0\u202f% against 31.0\u202f%');
+    const cut = reading(0.2, { largest: { label: '-202 to under 4719', development: 0.1, compared: 0.2 } });
+    expect(movedMost({ column: 'balance', holdOut: cut, outOfTime: null })).toMatch(/^\u2212202 to under 4\u202f719: 20/);
   });
   it('opens with what wants a look, else with chance', () => {
     expect(balanceFinding([entry('age', 0.01, 0.3), entry('home', 0.01, 0.12)])).toBe(

@@ -1,5 +1,5 @@
 import type { BalanceReading, CharacteristicBalance } from '@tallystone/contracts/samples/balance';
-import { DASH, fixed, plural, share } from '../../../ui/numbers';
+import { DASH, binWords, fixed, plural, share } from '../../../ui/numbers';
 
 /** The usual reading of a stability index (common practice). */
 const look = 0.1;
@@ -19,7 +19,7 @@ export function readingWords(reading: BalanceReading | null): string {
 export function movedMost({ holdOut, outOfTime }: CharacteristicBalance): string {
   const larger = (outOfTime?.index ?? -1) >= (holdOut?.index ?? -1) ? outOfTime : holdOut;
   const largest = larger?.largest;
-  return largest ? `${largest.label}: ${share(largest.compared)} against ${share(largest.development)}` : DASH;
+  return largest ? `${binWords(largest.label)}: ${share(largest.compared)} against ${share(largest.development)}` : DASH;
 }
 
 export const largestIndex = ({ holdOut, outOfTime }: CharacteristicBalance): number =>
