@@ -19,7 +19,10 @@ it('a rule on days past due and months on book replays from the raw file to what
     return Number(text) >= 90 ? 'bad' : Number(text) >= 30 ? 'between' : 'good';
   });
   const csv = csvOf({ ...sample, dpd: days, months, outcome });
-  const byRule = { daysPastDue: { column: 'dpd', bad: 90, indeterminate: 30, missing: 'excluded' }, monthsOnBook: { column: 'months', least: 9 } };
+  const byRule = {
+    daysPastDue: { column: 'dpd', bad: 90, indeterminate: 30, missing: 'excluded' },
+    monthsOnBook: { column: 'months', least: 9 },
+  };
   const byValues = { column: 'outcome', good: ['good'], bad: ['bad'], indeterminate: ['between'], excluded: ['out'] };
   const partition = { seed: 4, holdOutShare: 0.3, outOfTime: { column: 'applied_on', from: '2025-11-01' } };
   const folder = mkdtempSync(join(tmpdir(), 'tallystone-rule-'));
@@ -28,7 +31,14 @@ it('a rule on days past due and months on book replays from the raw file to what
     writeFileSync(place('sample.csv'), csv);
     const replayed = (name: string, stated: object): Result => {
       writeFileSync(place(`${name}.json`), JSON.stringify(specificationOf({ outcome: stated, partition })));
-      const args = ['--specification', place(`${name}.json`), '--data', place('sample.csv'), '--out', place(`${name}-result.json`)];
+      const args = [
+        '--specification',
+        place(`${name}.json`),
+        '--data',
+        place('sample.csv'),
+        '--out',
+        place(`${name}-result.json`),
+      ];
       execFileSync(process.execPath, ['--import', 'tsx', 'server/src/cli/replicate.ts', ...args], { encoding: 'utf8' });
       return JSON.parse(readFileSync(place(`${name}-result.json`), 'utf8')) as Result;
     };
