@@ -22,7 +22,7 @@ function writeCorrection(writer: Writer): void {
       ? `The intercept is ${fixed(result.intercept, 4)} after it`
       : `It moves the intercept from ${fixed(before, 4)} to ${fixed(result.intercept, 4)}`;
   writer.text(
-    `The prior correction allows for a sample in which bads are more or less frequent than in the population (King and Zeng 2001, from memory). ${moved} ${writer.cite(resultEvidence)}; coefficients, the order of applicants, AUC and KS stay. Calibration in the large, which is measured on the sample, reads off by as much.`,
+    `The prior correction allows for a sample in which bads are more or less frequent than in the population (King and Zeng 2001, from memory). ${moved} ${writer.cite(resultEvidence)}; coefficients, the order of applicants, AUC and KS stay. Calibration in the large, which is measured on the sample, reads off by about as much.`,
   );
 }
 

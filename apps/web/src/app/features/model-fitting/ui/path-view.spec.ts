@@ -64,7 +64,7 @@ describe('what a path shows', () => {
     const path = smallPath({ priorCorrection: { sampleBadRate: 0.3, populationBadRate: 0.05, shift: 2.0971 }, intercepts: smallPath().intercepts.map(() => 2.9471) });
     // 0.85 + ln(19 x 3/7) = 2.947, as King and Zeng's formula gives in the library's docstring.
     expect(correctionWords(path, 2)).toContain('from 0.850 to 2.947, from the bad rate of the fitted rows, 30.0\u202f%, to that of the population, 5.0\u202f%');
-    expect(correctionWords(path, 2)).toContain('reads off by 2.10');
+    expect(correctionWords(path, 2)).toContain('reads off by about 2.10');
     expect(inferenceWords('none')).toBeNull();
     expect(inferenceWords('parcelling')).toMatch(/^Declined applicants enter WOE and fit by parcelling\. .*cannot be tested on accepted applicants/);
   });

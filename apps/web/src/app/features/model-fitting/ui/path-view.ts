@@ -96,7 +96,7 @@ export function correctionWords(path: Pick<FitPath, 'priorCorrection' | 'interce
   if (path.priorCorrection === null) return null;
   const { sampleBadRate, populationBadRate, shift } = path.priorCorrection;
   const corrected = path.intercepts[index];
-  return `Prior correction: the intercept moves from ${fixed(corrected - shift, 3)} to ${fixed(corrected, 3)}, from the bad rate of the fitted rows, ${share(sampleBadRate)}, to that of the population, ${share(populationBadRate)}. Probabilities and points of every applicant shift by the same log odds; the order of applicants, AUC and KS stay. Calibration in the large is held against the sample and reads off by ${fixed(Math.abs(shift), 2)}.`;
+  return `Prior correction: the intercept moves from ${fixed(corrected - shift, 3)} to ${fixed(corrected, 3)}, from the bad rate of the fitted rows, ${share(sampleBadRate)}, to that of the population, ${share(populationBadRate)}. Probabilities and points of every applicant shift by the same log odds; the order of applicants, AUC and KS stay. Calibration in the large is held against the sample and reads off by about ${fixed(Math.abs(shift), 2)}.`;
 }
 
 /** What inference means for a reader of this fit; null for a fit on accepted applicants alone. */
