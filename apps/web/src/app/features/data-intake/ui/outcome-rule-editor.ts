@@ -68,7 +68,7 @@ import { type RulePart, rangeOf, ruleParts } from './findings';
         @if (counts(); as given) {
           Bad rate <b>{{ rate(given.badRate) }}</b> of the goods and bads of development and hold-out; out-of-time is not counted here.
         } @else {
-          <span class="ts-second">Counted as soon as the change is saved.</span>
+          <span class="ts-second">Counted once the change is saved and nothing is left to settle below.</span>
         }
       </p>
     </div>
