@@ -57,7 +57,7 @@ beforeAll(async () => {
   validator = await server.signIn('vera', 'validator');
   modelId = await modeller.model();
   ({ id: sampleId, path } = await modeller.sample(modelId, csv()));
-}, 60_000);
+}, 240_000);
 afterAll(() => server.stop());
 
 async function define(change: (content: DraftContent) => DraftContent): Promise<string> {

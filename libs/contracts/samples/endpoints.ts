@@ -1,8 +1,10 @@
 import { defineEndpoint } from '../endpoint';
+import { ofDefinition } from '../out-of-time/schema';
 import { Run } from '../runs/schema';
 import { PartitionBalance } from './balance';
 import { ColumnList } from './columns';
 import { ConfirmDraft, ConfirmReading, Definition, DefinitionList, Draft, DraftCheck, DraftContent } from './definition';
+import { ColumnLabels, Dictionary, DictionaryContent, DictionaryFile } from './dictionary';
 import { ColumnQualityDetail, NewFlagAnswer, QualityColumnQuery, QualityState } from './quality';
 import { Preview, PreviewRequest } from './reading';
 import { DefinitionParams, Sample, SampleList, SampleListParams, SampleParams, UploadParams } from './schema';
@@ -174,4 +176,42 @@ export const answerFlag = defineEndpoint({
   body: NewFlagAnswer,
   response: QualityState,
   status: 201,
+});
+
+export const readDictionary = defineEndpoint({
+  method: 'GET',
+  path: `${ofSample}/dictionary`,
+  summary: 'The data dictionary, with the entity tag that a save needs',
+  params: SampleParams,
+  response: Dictionary,
+});
+export const saveDictionary = defineEndpoint({
+  method: 'PUT',
+  path: `${ofSample}/dictionary`,
+  summary: 'Save the data dictionary (If-Match)',
+  params: SampleParams,
+  body: DictionaryContent,
+  response: Dictionary,
+});
+export const exportDictionary = defineEndpoint({
+  method: 'GET',
+  path: `${ofSample}/dictionary/file`,
+  summary: 'The data dictionary as CSV, with roles and special codes',
+  params: SampleParams,
+  response: 'bytes',
+});
+export const importDictionary = defineEndpoint({
+  method: 'POST',
+  path: `${ofSample}/dictionary/file`,
+  summary: 'Take a dictionary from CSV: all of it, or every problem at once and nothing (If-Match)',
+  params: SampleParams,
+  body: DictionaryFile,
+  response: Dictionary,
+});
+export const readColumnLabels = defineEndpoint({
+  method: 'GET',
+  path: '/api/sample-definitions/:definitionId/labels',
+  summary: 'How the columns of a sample are called',
+  params: ofDefinition,
+  response: ColumnLabels,
 });

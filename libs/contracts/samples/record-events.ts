@@ -25,4 +25,7 @@ export const sampleEvents = [
     after: z.strictObject({ column: z.string().nullable(), code: QualityFlagCode, answer: FlagAnswerKind }),
     reason: z.string(),
   }),
+  recordEvent('sample.dictionary-saved', 'sample', {
+    after: z.strictObject({ columns: z.array(z.string()), from: z.enum(['page', 'file']) }),
+  }),
 ] as const;

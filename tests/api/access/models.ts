@@ -62,6 +62,11 @@ export const sampleRows: readonly AccessRow[] = [
   { ...readsModel(`GET ${ofSample}/quality/column`), query: () => 'column=age' },
   developsModel(`POST ${ofSample}/quality`),
   developsModel(`POST ${ofSample}/quality/answers`),
+  readsModel(`GET ${ofSample}/dictionary`),
+  developsModel(`PUT ${ofSample}/dictionary`),
+  readsModel(`GET ${ofSample}/dictionary/file`),
+  developsModel(`POST ${ofSample}/dictionary/file`),
+  readsModel('GET /api/sample-definitions/:definitionId/labels'),
   // Last of its kind: whoever may, discards the sample.
   { ...developsModel(`DELETE ${ofSample}`), ...spare },
 ];

@@ -1,7 +1,8 @@
 import type { Route } from '../http/route';
 import { definitionRoutes } from './definitions';
+import { dictionaryRoutes } from './dictionary';
 import { fileRoutes } from './files';
 import { qualityRoutes } from './quality';
 import { uploadRoutes } from './uploads';
 
-export const sampleRoutes = (): Route[] => [...uploadRoutes(), ...fileRoutes(), ...definitionRoutes(), ...qualityRoutes()];
+export const sampleRoutes = (): Route[] => [...uploadRoutes(), ...fileRoutes(), ...definitionRoutes(), ...qualityRoutes(), ...dictionaryRoutes()];

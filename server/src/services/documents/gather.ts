@@ -1,5 +1,6 @@
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
 import type { SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
+import type { ColumnLabels } from '@tallystone/contracts/samples/dictionary';
 import type { QualityReport } from '@tallystone/contracts/samples/quality';
 import type { Result } from '@tallystone/contracts/result/types';
 import type { Specification } from '@tallystone/contracts/specification/types';
@@ -32,6 +33,8 @@ interface SampleEvidence {
   quality: { name: string; kind: string; profile: ColumnProfile }[];
   /** Absent in versions frozen before there were reports, null where none was made. */
   report?: QualityReport | null;
+  /** Absent in versions frozen before there was a dictionary. */
+  labels?: ColumnLabels['labels'];
 }
 interface ClassingEvidence {
   edits: { column: string; edit: string; reason: { code: string; text: string } | null; by: string; at: string }[];
@@ -137,7 +140,7 @@ export async function gatherDocument(context: Context, versionId: string, person
     })),
     conditions: (concluded?.conditions ?? []).map((text) => ({ text, kind: 'condition of the validator', owner: model.owner, due: null, discharged: null })),
     texts,
-    columns: result.characteristics.map(({ column }) => ({ column, label: column, unit: null })),
+    columns: columnsOf(result, sample?.content ?? null),
     evidence: evidence.map((entry) => ({ number: `E-${entry.number}`, title: entry.title, madeBy: entry.by, madeAt: entry.at, sha256: entry.sha256 })),
     specification,
     result,
@@ -272,6 +275,13 @@ function qualityOf(name: string, kind: string, profile: ColumnProfile, definitio
     mostFrequentRows: most?.count ?? 0,
     flags: profile.flags.map(({ finding }) => finding),
   };
+}
+
+/** Columns by the name that the dictionary had for them when the version was frozen: those of the file, and of the result in any case. */
+function columnsOf({ characteristics }: Result, sample: SampleEvidence | null): DocumentInput['columns'] {
+  const labels = new Map((sample?.labels ?? []).map((entry) => [entry.column, entry]));
+  const names = new Set([...characteristics.map(({ column }) => column), ...(sample?.quality ?? []).map(({ name }) => name)]);
+  return [...names].map((column) => ({ column, label: labels.get(column)?.label || column, unit: labels.get(column)?.unit || null }));
 }
 
 /** What the quality report raised and how it was answered when the version was frozen. */

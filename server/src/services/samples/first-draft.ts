@@ -5,6 +5,7 @@ import type { Transaction } from 'sequelize';
 import type { Context } from '../../context';
 import { rows } from '../../database/sql';
 import { proposeOutcome } from '../../profiling/guess-outcome';
+import { carryDictionary } from './dictionary/carry';
 
 /** The draft that a person finds after reading: every suggestion filled in, nothing confirmed. */
 export function firstDraft(profiles: readonly ColumnProfile[]): DraftContent {
@@ -64,12 +65,13 @@ export async function writeFirstDraft(
   profiles: readonly ColumnProfile[],
   personId: string,
 ): Promise<void> {
+  const content = await carryDictionary(context.sequelize, tx, sampleId, firstDraft(profiles), profiles);
   await rows(
     context.sequelize,
     `INSERT INTO sample_drafts (sample_id, content, saved_by) VALUES ($1, $2::jsonb, $3)
      ON CONFLICT (sample_id) DO UPDATE SET content = excluded.content, revision = sample_drafts.revision + 1, saved_at = now(), saved_by = excluded.saved_by
      RETURNING sample_id`,
-    [sampleId, JSON.stringify(firstDraft(profiles)), personId],
+    [sampleId, JSON.stringify(content), personId],
     tx,
   );
 }

@@ -5,6 +5,7 @@ import { Fit, FittedPath } from '../../models/fit';
 import { ScorecardRow } from '../../models/scorecard';
 import { conflict } from '../../problems/problem';
 import type { FoundFit } from '../fits/find-fit';
+import { labelOf, labelsOf } from '../samples/dictionary/find';
 import { defaultBands, defaultReasons, defaultScaling, withChoice } from '../specifications/build-specification';
 
 /** A fit at its chosen penalty with the settings that make it a scorecard. */
@@ -47,14 +48,15 @@ export async function loadScorecard(sequelize: Sequelize, fit: FoundFit, tx: Tra
   ]);
   if (!row || !fitted) throw new Error(`Fit ${fit.id} is ready without a path`);
   const { path } = fitted;
+  const { labels } = await labelsOf(sequelize, fit.definitionId, tx);
   const settings = saved?.settings ?? defaultSettings;
   const chosen = withChoice(JSON.parse(row.specification) as Specification, { rule: choice.rule, index: choice.place }, path.lambdas);
   const specification: Specification = { ...chosen, ...settings };
   const coefficients = path.coefficients[choice.place];
   const kept = specification.characteristics.flatMap((entry, j): KeptCharacteristic[] => {
     if (coefficients[j] === 0 || entry.coding === 'linear') return [];
-    const { label, informationValue, bins } = path.characteristics[j];
-    return [{ definition: entry, label, coefficient: coefficients[j], informationValue, bins }];
+    const { informationValue, bins } = path.characteristics[j];
+    return [{ definition: entry, label: labelOf(labels, entry.column), coefficient: coefficients[j], informationValue, bins }];
   });
   return {
     settings,

@@ -1,5 +1,6 @@
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
+import { labelsOf } from '../samples/dictionary/find';
 import { reportOf } from '../samples/quality/read-report';
 import { codeVersionFacts } from './code-version';
 import type { NewEvidence } from './evidence';
@@ -52,7 +53,7 @@ export async function versionEvidence(
         rounding: loaded.settings.scaling.rounding,
       },
     },
-    { kind: 'sample', title: 'Raw file, exclusions, outcome and quality of the columns', content: { ...sample, report: await reportOf(sequelize, definition.id, tx) } },
+    { kind: 'sample', title: 'Raw file, exclusions, outcome and quality of the columns', content: { ...sample, report: await reportOf(sequelize, definition.id, tx), ...(await labelsOf(sequelize, definition.id, tx)) } },
     { kind: 'classing', title: 'Bins, counts by partition and edits by hand', content: { edits, characteristics: summaries, bins: frozen.figures.bins } },
     {
       kind: 'fit',

@@ -1,6 +1,7 @@
 import { EnvironmentInjector, inject, runInInjectionContext } from '@angular/core';
 import { type CanDeactivateFn, type GuardResult, type Routes } from '@angular/router';
 import { type HoldsWork, keepsUnsavedWork } from '../../core/unsaved-changes';
+import { DictionaryStore } from './data/dictionary-store';
 import { DraftStore } from './data/draft-store';
 
 /** The draft saves by itself, so leaving saves first; only what could not be saved is asked about. */
@@ -15,7 +16,7 @@ export const dataIntakeRoutes: Routes = [
   { path: '', title: 'Sample', loadComponent: () => import('./pages/samples-page').then((m) => m.SamplesPage) },
   {
     path: ':sampleId',
-    providers: [DraftStore],
+    providers: [DraftStore, DictionaryStore],
     children: [
       {
         path: '',

@@ -33,6 +33,7 @@ import {
 } from '@tallystone/numeric/bench';
 import { firstValueFrom } from 'rxjs';
 import { CurrentModel } from '../../../core/current-model';
+import { columnLabels } from '../../../core/column-labels';
 import { Shortcuts } from '../../../core/shortcuts';
 import { Task } from '../../../core/task';
 import { warnBeforeUnload } from '../../../core/unsaved-changes';
@@ -95,6 +96,9 @@ export class BenchPage {
 
   private readonly valueField = viewChild<ElementRef<HTMLInputElement>>('value');
   protected readonly binning = binningOf(() => this.binningId());
+  private readonly labels = columnLabels(() => (this.binning.hasValue() ? this.binning.value().definitionId : null));
+  /** What the dictionary calls it, beside its heading. */
+  protected readonly label = computed(() => this.labels().get(this.column()) ?? null);
   private readonly list = characteristicsOf(() => this.binningId());
   protected readonly cut = signal<number | null>(null);
   protected readonly bin = signal<number | null>(null);

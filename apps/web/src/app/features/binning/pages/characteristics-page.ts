@@ -8,6 +8,7 @@ import { MatSelectModule } from '@angular/material/select';
 import { Router, RouterLink } from '@angular/router';
 import { Subject, debounceTime, filter, firstValueFrom } from 'rxjs';
 import { CurrentModel } from '../../../core/current-model';
+import { columnLabels } from '../../../core/column-labels';
 import { Runs } from '../../../core/events/runs';
 import { Task } from '../../../core/task';
 import { Ask } from '../../../ui/ask';
@@ -60,6 +61,7 @@ export class CharacteristicsPage {
   readonly sort = input<string>();
 
   protected readonly binning = binningOf(() => this.binningId());
+  private readonly labels = columnLabels(() => (this.binning.hasValue() ? this.binning.value().definitionId : null));
   protected readonly list = characteristicsOf(() => this.binningId());
   protected readonly changing = new Task();
   protected readonly chosen = signal<ReadonlySet<string>>(new Set());
@@ -95,6 +97,9 @@ export class CharacteristicsPage {
   });
   protected readonly columns = computed<readonly Column<CharacteristicSummary>[]>(() => [
     { key: 'column', label: 'Characteristic', value: (row) => row.column, link: (row) => [row.id], sortable: true },
+    ...(this.labels().size > 0
+      ? [{ key: 'label', label: 'Label', value: (row: CharacteristicSummary) => this.labels().get(row.column) ?? null, sortable: true }]
+      : []),
     ...(this.mayEdit()
       ? [{ key: 'choose', label: 'Choose', value: (row: CharacteristicSummary) => (this.chosen().has(row.id) ? 'yes' : 'no') }]
       : []),

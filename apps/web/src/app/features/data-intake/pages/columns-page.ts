@@ -1,11 +1,12 @@
 import {
   ChangeDetectionStrategy,
   Component,
-  ElementRef,
+  type ElementRef,
   computed,
   effect,
   inject,
   input,
+  signal,
   untracked,
   viewChild,
 } from '@angular/core';
@@ -16,9 +17,12 @@ import { type Column } from '../../../ui/column';
 import { CellTemplate, DenseTable, type TableSort } from '../../../ui/dense-table';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
+import { DictionaryStore } from '../data/dictionary-store';
 import { DraftStore } from '../data/draft-store';
 import { type ColumnProfile, columnsOf, oneSample } from '../data/samples';
+import { CarriedNote } from '../ui/carried-note';
 import { ColumnEditor } from '../ui/column-editor';
+import { DictionaryEditor } from '../ui/dictionary-editor';
 import { flagsOf, mostFrequentOf, rangeOf } from '../ui/findings';
 import { SampleSteps } from '../ui/sample-steps';
 import { SaveStateNote } from '../ui/save-state';
@@ -27,6 +31,7 @@ import type { DefinedColumn } from '@tallystone/contracts/samples/definition';
 interface Row {
   readonly profile: ColumnProfile;
   readonly defined: DefinedColumn | null;
+  readonly label: string;
 }
 
 /** The quality of each column and what it is taken for. The chosen column stands in the address. */
@@ -37,9 +42,11 @@ interface Row {
   imports: [
     RouterLink,
     MatButtonModule,
+    CarriedNote,
     CellTemplate,
     ColumnEditor,
     DenseTable,
+    DictionaryEditor,
     PageHeader,
     ProblemList,
     SampleSteps,
@@ -61,6 +68,15 @@ interface Row {
       </ts-page-header>
       <ts-problems [error]="columns.error()" />
       <ts-problems [error]="draft.error()" />
+      <ts-problems [error]="words.error()" next="Mend the file and import it again: nothing of it was taken." [limit]="60" />
+      @if (words.stale()) {
+        <p role="status">
+          Someone else saved the dictionary meanwhile. It was read anew: make your last change again if it still holds.
+        </p>
+      }
+      @if (words.dictionary()?.carried; as carried) {
+        <ts-carried-note [carried]="carried" />
+      }
       @if (draft.saveState() === 'stale') {
         <ts-save-state [state]="draft.saveState()" (theirs)="draft.reload()" (mine)="draft.keepMine()" />
       }
@@ -85,13 +101,48 @@ interface Row {
           </ng-template>
         </ts-table>
         @if (chosen(); as row) {
-          <ts-column-editor [profile]="row.profile" [column]="row.defined" [editable]="editable()" (changed)="change($event)" />
+          <div class="chosen" #part>
+            <ts-column-editor [profile]="row.profile" [column]="row.defined" [editable]="editable()" (changed)="change($event)" />
+            @if (words.dictionary()) {
+              <ts-dictionary-editor
+                [entry]="words.entry(row.profile.column)"
+                [column]="row.defined"
+                [editable]="words.editable()"
+                (changed)="words.change($event)"
+              />
+            }
+          </div>
         }
       </div>
+      @if (words.dictionary()) {
+        <section aria-labelledby="dictionary">
+          <h3 id="dictionary">Data dictionary</h3>
+          <p class="ts-second">
+            Labels, units, descriptions, roles and special codes as one CSV file, to be read or filled in elsewhere. An import
+            that has a problem changes nothing.
+          </p>
+          <div class="ts-actions">
+            <a matButton="outlined" [href]="file()" download="dictionary.csv">Export the dictionary</a>
+            @if (words.editable()) {
+              <button matButton="outlined" type="button" [disabled]="words.unsaved()" (click)="picker.click()">
+                Import a dictionary
+              </button>
+            }
+            <input #picker type="file" accept=".csv,text/csv" aria-label="Dictionary file" hidden (change)="importFile(picker)" />
+            @if (imported()) {
+              <span class="ts-second" role="status">The dictionary was imported.</span>
+            }
+          </div>
+        </section>
+      }
     </div>
   `,
   styles: `
-    ts-column-editor {
+    section {
+      display: grid;
+      gap: 10px;
+    }
+    .chosen {
       position: sticky;
       top: 16px;
       max-height: calc(100vh - 32px);
@@ -100,7 +151,7 @@ interface Row {
       padding: 2px;
     }
     @media (max-width: 899px) {
-      ts-column-editor {
+      .chosen {
         position: static;
         max-height: none;
       }
@@ -127,13 +178,16 @@ interface Row {
 export class ColumnsPage {
   private readonly router = inject(Router);
   protected readonly draft = inject(DraftStore);
+  protected readonly words = inject(DictionaryStore);
 
   readonly modelId = input.required<string>();
   readonly sampleId = input.required<string>();
   readonly column = input<string>();
   readonly sort = input<string>();
 
-  private readonly editor = viewChild<ColumnEditor, ElementRef<HTMLElement>>(ColumnEditor, { read: ElementRef });
+  private readonly editor = viewChild<ElementRef<HTMLElement>>('part');
+  protected readonly imported = signal(false);
+  protected readonly file = computed(() => `/api/models/${this.modelId()}/samples/${this.sampleId()}/dictionary/file`);
   protected readonly sample = oneSample(
     () => this.modelId(),
     () => this.sampleId(),
@@ -142,12 +196,19 @@ export class ColumnsPage {
     () => this.modelId(),
     () => this.sampleId(),
   );
-  readonly unsaved = this.draft.unsaved;
+  readonly unsaved = computed(() => this.draft.unsaved() || this.words.unsaved());
   protected readonly editable = computed(() => this.sample.hasValue() && this.sample.value().abilities.includes('define'));
   protected readonly rows = computed<readonly Row[]>(() => {
     const profiles = this.columns.hasValue() ? this.columns.value().columns : [];
     const defined = new Map((this.draft.content()?.columns ?? []).map((entry) => [entry.column, entry]));
-    return profiles.map((profile) => ({ profile, defined: defined.get(profile.column) ?? null }));
+    return profiles.map((profile) => {
+      const { label, unit } = this.words.entry(profile.column);
+      return {
+        profile,
+        defined: defined.get(profile.column) ?? null,
+        label: unit ? `${label || profile.column} (${unit})` : label,
+      };
+    });
   });
   protected readonly chosen = computed(
     () => this.rows().find(({ profile }) => profile.column === this.column()) ?? this.rows()[0] ?? null,
@@ -159,6 +220,7 @@ export class ColumnsPage {
 
   protected readonly table: readonly Column<Row>[] = [
     { key: 'column', label: 'Column', value: (row) => row.profile.column, sortable: true },
+    { key: 'label', label: 'Label', value: (row) => row.label, sortable: true },
     {
       key: 'role',
       label: 'Role',
@@ -187,10 +249,13 @@ export class ColumnsPage {
   ];
 
   constructor() {
-    warnBeforeUnload(() => this.draft.unsaved());
+    warnBeforeUnload(() => this.unsaved());
     effect(() => {
       const [modelId, sampleId] = [this.modelId(), this.sampleId()];
-      untracked(() => void this.draft.open(modelId, sampleId));
+      untracked(() => {
+        void this.draft.open(modelId, sampleId);
+        void this.words.open(modelId, sampleId);
+      });
     });
   }
 
@@ -207,6 +272,19 @@ export class ColumnsPage {
   protected reorder(sort: TableSort | null): void {
     const value = sort ? `${sort.key}.${sort.descending ? 'down' : 'up'}` : null;
     void this.router.navigate([], { queryParams: { sort: value }, queryParamsHandling: 'merge', replaceUrl: true });
+  }
+
+  /** Roles and codes of the file go into the draft, which is saved first and read anew afterwards. */
+  protected async importFile(picker: HTMLInputElement): Promise<void> {
+    const file = picker.files?.[0];
+    if (!file) return;
+    this.imported.set(false);
+    await this.draft.flush();
+    const taken = await this.words.importFile(await file.text());
+    picker.value = '';
+    if (!taken) return;
+    this.imported.set(true);
+    await this.draft.reload();
   }
 
   protected change(entry: DefinedColumn): void {

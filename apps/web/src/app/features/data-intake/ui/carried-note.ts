@@ -1,0 +1,48 @@
+import { ChangeDetectionStrategy, Component, computed, input } from '@angular/core';
+import type { CarriedDictionary } from '@tallystone/contracts/samples/dictionary';
+import { plural } from '../../../ui/numbers';
+
+/** What was taken over from an earlier sample of the model, and what was not, with its reason. */
+@Component({
+  selector: 'ts-carried-note',
+  changeDetection: ChangeDetectionStrategy.OnPush,
+  template: `
+    <p>{{ words() }}</p>
+    @if (carried().notCarried.length > 0) {
+      <details>
+        <summary>{{ rest() }}</summary>
+        <ul>
+          @for (entry of carried().notCarried; track entry.column) {
+            <li>
+              <b>{{ entry.column }}</b> {{ entry.why }}
+            </li>
+          }
+        </ul>
+      </details>
+    }
+  `,
+  styles: `
+    :host {
+      display: grid;
+      gap: 4px;
+      padding: 10px 14px;
+      background: var(--ts-sunk);
+      border-radius: var(--ts-corner);
+    }
+    summary {
+      min-height: 24px;
+      cursor: pointer;
+    }
+    ul {
+      padding-left: 20px;
+    }
+  `,
+})
+export class CarriedNote {
+  readonly carried = input.required<CarriedDictionary>();
+  protected readonly words = computed(
+    () =>
+      `Roles, special codes and words of ${plural(this.carried().columns.length, 'column')} are carried over from ${this.carried().fileName}: same name and kind.`,
+  );
+  protected readonly rest = computed(() => `${plural(this.carried().notCarried.length, 'column')} not carried over`);
+}
