@@ -79,7 +79,7 @@ describe('the data dictionary of a sample', () => {
 
   it('leaves as CSV in which nothing is a formula, and comes back the same', async () => {
     const text = await file();
-    const [headings, ...lines] = parse<string[]>(text, { bom: true });
+    const [headings, ...lines]: string[][] = parse(text, { bom: true });
     expect(headings).toEqual(['column', 'kind', 'role', 'label', 'unit', 'description', 'code', 'meaning', 'treatment']);
     expect(lines).toHaveLength(9);
     for (const cell of lines.flat()) expect(cell).not.toMatch(/^\s*[=+\-@]/);
