@@ -1,9 +1,10 @@
 import { existsSync } from 'node:fs';
 import { defineConfig } from '@playwright/test';
 
-/** The browser of the system: the npm package would download one of its own. */
+/** The browser of the system, its headless build first: the npm package would download one of its own. */
 const browser = [
   process.env['TALLYSTONE_CHROMIUM'],
+  '/usr/bin/chromium-headless-shell',
   '/usr/bin/chromium',
   '/usr/bin/chromium-browser',
   '/usr/bin/google-chrome',

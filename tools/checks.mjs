@@ -138,7 +138,8 @@ export function steps({ work, long, filter }) {
     {
       name: 'unit',
       title: 'Unit tests of libraries and server, API and reference checks',
-      slots: 2,
+      // One lane, though it works with two processes: it begins while the other lane ends, and browser tests wait for both.
+      slots: 1,
       folders: ['libs', 'server/src', 'tests/reference', 'tests/api'],
       needs: ['postgres'],
       report: report('unit'),
