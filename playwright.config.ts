@@ -1,15 +1,5 @@
-import { existsSync } from 'node:fs';
 import { defineConfig } from '@playwright/test';
-
-/** The browser of the system, its headless build first: the npm package would download one of its own. */
-const browser = [
-  process.env['TALLYSTONE_CHROMIUM'],
-  '/usr/bin/chromium-headless-shell',
-  '/usr/bin/chromium',
-  '/usr/bin/chromium-browser',
-  '/usr/bin/google-chrome',
-  '/Applications/Google Chrome.app/Contents/MacOS/Google Chrome',
-].find((path) => path && existsSync(path));
+import { findBrowser } from './tools/browser.mjs';
 
 /** End-to-end tests against the installed product: built server and client, a web and a worker process, PostgreSQL. */
 export default defineConfig({
@@ -36,7 +26,7 @@ export default defineConfig({
     trace: 'off',
     video: 'off',
     launchOptions: {
-      executablePath: browser,
+      executablePath: findBrowser(),
       args: [
         '--headless',
         '--no-sandbox',

@@ -13,6 +13,7 @@ import { spawn, spawnSync } from 'node:child_process';
 import * as fs from 'node:fs';
 import * as os from 'node:os';
 import * as path from 'node:path';
+import { findBrowser } from './browser.mjs';
 import { specsUnder, steps } from './checks.mjs';
 import { ROOT, checkNode, ensurePackages } from './install.mjs';
 import { SetupProblem, aptInstall, barredFolder, canInstall, startPostgres, stopPostgres } from './postgres.mjs';
@@ -43,19 +44,11 @@ function parse(args) {
 
 // --- What has to be there ---------------------------------------------------------------------------------------------
 
-/** The headless build first: the same engine without the windows, which takes a quarter less of the time. */
-const browserPaths = [
-  '/usr/bin/chromium-headless-shell',
-  '/usr/bin/chromium',
-  '/usr/bin/chromium-browser',
-  '/usr/bin/google-chrome',
-  '/Applications/Google Chrome.app/Contents/MacOS/Google Chrome',
-];
 const works = (program, ...args) => spawnSync(program, args, { stdio: 'ignore' }).status === 0;
 
 function missingPrograms() {
   const missing = [];
-  if (!(process.env.TALLYSTONE_CHROMIUM ?? browserPaths.find((file) => fs.existsSync(file)))) missing.push('chromium-headless-shell');
+  if (!findBrowser()) missing.push('chromium-headless-shell');
   if (!works('pdftotext', '-v')) missing.push('poppler-utils');
   return missing;
 }

@@ -102,6 +102,7 @@ const calls: [string, () => unknown, object][] = [
   ['intercept', () => numeric.priorCorrectedIntercept(NaN, 0.1, 0.2), { name: 'intercept', index: 0 }],
   ['values', () => numeric.quantileType7(nan, 0.5), { name: 'values', index: 1 }],
   ['p', () => numeric.quantilesType7(scores, [NaN]), { name: 'p' }],
+  ['values', () => numeric.quantileOfSorted(Float64Array.of(1, 2, NaN), 0.5), { name: 'values', index: 2 }],
   ['events', () => numeric.wilsonInterval(NaN, 5), { name: 'events' }],
   ['rows', () => numeric.clopperPearson(1, NaN), { name: 'events' }],
   ['level', () => numeric.clopperPearson(1, 5, NaN), { name: 'level' }],

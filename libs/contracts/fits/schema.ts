@@ -53,6 +53,9 @@ export const DeclinedSettings = z
   })
   .refine((entry) => entry.method === 'none' || entry.reason.length > 0, { path: ['reason'], message: 'Say why declined applicants are inferred' });
 
+/** Accepts only: what a fit does with declined applicants unless it says otherwise. */
+export const noInference: z.output<typeof DeclinedSettings> = { method: 'none', bands: 10, uplift: 1.5, reason: '' };
+
 /** The bad rate of the population, where the sample was drawn with another one: moves the intercept and nothing else. */
 export const PriorCorrection = z.strictObject({
   populationBadRate: z.number().gt(0, 'More than 0').lt(1, 'Less than 1'),
@@ -84,7 +87,7 @@ export const FitSettings = z.strictObject({
   woe: z
     .strictObject({ smoothing: z.number().min(0).max(10).default(0.5), when: z.enum(['zero-cell', 'always', 'never']).default('zero-cell') })
     .default({ smoothing: 0.5, when: 'zero-cell' }),
-  declined: DeclinedSettings.default({ method: 'none', bands: 10, uplift: 1.5, reason: '' }),
+  declined: DeclinedSettings.default(noInference),
   priorCorrection: PriorCorrection.nullable().default(null),
   characteristics: z
     .array(CharacteristicTreatment)

@@ -13,7 +13,8 @@ export function outcomeColumns(outcome: OutcomeDefinition): string[] {
 export const outcomeExcludes = (outcome: OutcomeDefinition): boolean =>
   isByRule(outcome) ? outcome.monthsOnBook !== null || outcome.daysPastDue.missing === 'excluded' : outcome.excluded.length > 0;
 
-const listed = (values: readonly string[]): string =>
+/** Values of a column in words. @example listed(['', 'x']) // '(empty), x' */
+export const listed = (values: readonly string[]): string =>
   values.length === 0 ? 'none' : values.map((value) => (value === '' ? '(empty)' : value)).join(', ');
 
 /**

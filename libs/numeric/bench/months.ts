@@ -1,8 +1,10 @@
 import { weightOfEvidence } from '../binning/weight-of-evidence';
+import { normalQuantile } from '../distributions/normal';
 import { wilsonInterval } from '../metrics/wilson';
 import { usualSmoothing } from './reading';
 import { binOfSlots, layoutOf, sumSlots, type BinSums } from './slots';
 import type { Bins, FineClasses, PartitionName, SlotCounts } from './types';
+import { onesidedPoint } from './warnings';
 
 /** Counts of the slots of a characteristic in one month, "2024-03". */
 export interface MonthCounts extends SlotCounts {
@@ -14,7 +16,7 @@ export type MonthsOfPartitions = Readonly<Record<PartitionName, readonly MonthCo
 
 /** A cell with fewer goods or bads than this is marked: its figures swing with every row. Common practice, after the rule of five of chi-square tests. */
 export const fewestToRead = 5;
-const normal = 1.959964; // two-sided 95 % point
+const normal = normalQuantile(0.975);
 
 /** One bin in one period of one partition. */
 export interface PeriodCell {
@@ -56,16 +58,27 @@ export function readPeriods(fine: FineClasses, bins: Bins, months: MonthsOfParti
   const slots = binOfSlots(fine, bins);
   const count = layoutOf(bins).length;
   return (['development', 'holdOut', 'outOfTime'] as const).flatMap((partition) => {
-    const sums = new Map<string, BinSums>();
-    for (const counts of months[partition] ?? []) {
-      const label = by === 'month' ? counts.month : quarterOf(counts.month);
-      const here = sumSlots(counts, slots, count);
-      const known = sums.get(label);
-      if (known) add(known, here);
-      else sums.set(label, here);
-    }
+    const sums = sumBy(months[partition] ?? [], by === 'month' ? (month) => month : quarterOf, (counts) =>
+      sumSlots(counts, slots, count),
+    );
     return [...sums].map(([label, sum]) => ({ label, partition, cells: cellsOf(sum) }));
   });
+}
+
+/** Sums over the bins by what `labelOf` makes of a month, in the order in which labels first come. */
+function sumBy(
+  months: readonly MonthCounts[],
+  labelOf: (month: string) => string,
+  sumsOf: (counts: MonthCounts) => BinSums,
+): Map<string, BinSums> {
+  const sums = new Map<string, BinSums>();
+  for (const counts of months) {
+    const label = labelOf(counts.month);
+    const known = sums.get(label);
+    if (known) add(known, sumsOf(counts));
+    else sums.set(label, sumsOf(counts));
+  }
+  return sums;
 }
 
 function add(to: BinSums, from: BinSums): void {
@@ -134,15 +147,12 @@ export function monthlyDrift(
 ): MonthlyDrift | null {
   const count = layoutOf(bins).length;
   const slots = binOfSlots(fine, bins);
-  const sums = new Map<string, BinSums>();
-  for (const partition of ['development', 'holdOut'] as const) {
-    for (const counts of months[partition] ?? []) {
-      const here = sumSlots(counts, slots, count);
-      const known = sums.get(counts.month);
-      if (known) add(known, here);
-      else sums.set(counts.month, here);
-    }
-  }
+  const both = [...(months.development ?? []), ...(months.holdOut ?? [])];
+  const sums = sumBy(
+    both,
+    (month) => month,
+    (counts) => sumSlots(counts, slots, count),
+  );
   const table = [...sums.values()].map(({ rows, goods, bads }) =>
     Array.from(rows, (row, bin) => ({ rows: row, bads: atRows(row, goods[bin], bads[bin]).bads })),
   );
@@ -161,12 +171,13 @@ function driftOf(table: readonly (readonly Cell[])[]): MonthlyDrift | null {
     const rows = total(cells.map((cell) => cell.rows));
     return bads > 0 && bads < rows;
   };
-  let kept: (readonly Cell[])[] = table.filter(mixed);
-  // Leaving a bin out can leave a month with one outcome, and the other way round.
-  for (let width = -1; width !== kept.length * 1e6 + (kept[0]?.length ?? 0);) {
-    width = kept.length * 1e6 + (kept[0]?.length ?? 0);
-    const used = (kept[0] ?? []).map((_, bin) => mixed(kept.map((line) => line[bin])));
-    kept = kept.map((line) => line.filter((_, bin) => used[bin])).filter(mixed);
+  let kept: readonly (readonly Cell[])[] = table;
+  // Leaving a bin out can leave a month with one outcome, and the other way round: until nothing is left out any more.
+  for (let changed = true; changed;) {
+    const lines = kept.filter(mixed);
+    const used = (lines[0] ?? []).map((_, bin) => mixed(lines.map((line) => line[bin])));
+    changed = lines.length < kept.length || used.includes(false);
+    kept = lines.map((line) => line.filter((_, bin) => used[bin]));
   }
   const bins = kept[0]?.length ?? 0;
   if (kept.length < 2 || bins < 2) return null;
@@ -191,7 +202,7 @@ function driftOf(table: readonly (readonly Cell[])[]): MonthlyDrift | null {
     deviation: Math.sqrt(Math.max(0, variance)),
     statistic,
     freedom,
-    beyondChance: statistic > freedom + 1.6449 * Math.sqrt(2 * freedom),
+    beyondChance: statistic > freedom + onesidedPoint * Math.sqrt(2 * freedom),
     months: kept.length,
   };
 }

@@ -28,8 +28,8 @@ export interface BenchWarning {
 
 /** Above this an information value asks for a look at leakage. Siddiqi 2006, from memory; lender policy. */
 export const leakageSuspect = 0.5;
-/** One-sided 5 % point of the normal distribution: smaller reversals are what chance does. */
-const beyondChance = 1.6449;
+/** One-sided 5 % point of the normal distribution: what is smaller is what chance does. */
+export const onesidedPoint = 1.6449;
 
 /**
  * What a careful analyst would look at in the bins of one characteristic. Special and missing bins are as large as they are, so only bins of
@@ -124,7 +124,7 @@ export function reversedBins(reading: BenchReading, partition: PartitionName): n
     const developed = difference(before.development, here.development);
     const seen = difference(before[partition], here[partition]);
     if (developed === null || seen === null || developed.by === 0) continue;
-    if (Math.sign(seen.by) === -Math.sign(developed.by) && Math.abs(seen.by) > beyondChance * seen.error)
+    if (Math.sign(seen.by) === -Math.sign(developed.by) && Math.abs(seen.by) > onesidedPoint * seen.error)
       reversed.push(places[i].index);
   }
   return reversed;

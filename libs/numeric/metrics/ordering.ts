@@ -69,14 +69,26 @@ export function quantileType7(values: ArrayLike<number>, p: number): number {
  * Source: as `quantileType7`.
  */
 export function quantilesType7(values: ArrayLike<number>, probabilities: readonly number[]): number[] {
-  if (values.length === 0) throw new NumericError('no-rows', 'A quantile needs at least one value.', { name: 'values' });
   requireFinite('values', values);
   const sorted = Float64Array.from(values).sort();
-  return probabilities.map((p) => {
-    requireThat(p >= 0 && p <= 1, 'p', 'p must lie between 0 and 1.');
-    const place = (sorted.length - 1) * p;
-    const low = Math.floor(place);
-    const high = Math.min(low + 1, sorted.length - 1);
-    return sorted[low] + (place - low) * (sorted[high] - sorted[low]);
-  });
+  return probabilities.map((p) => quantileOfSorted(sorted, p));
+}
+
+/**
+ * Quantile of type 7 of values that are sorted already, for whoever asks for many of them.
+ * @param sorted n finite values, ascending, NaN last, as `sort` leaves them; not looked at for that
+ * @param p 0 to 1
+ * @throws NumericError without values, for NaN or infinite ones (which lie at an end), and for p outside
+ * @example quantileOfSorted(Float64Array.of(1, 2, 4), 0.75) // 3
+ * Source: as `quantileType7`.
+ */
+export function quantileOfSorted(sorted: Float64Array, p: number): number {
+  if (sorted.length === 0) throw new NumericError('no-rows', 'A quantile needs at least one value.', { name: 'values' });
+  const last = sorted.length - 1;
+  if (!Number.isFinite(sorted[0]) || !Number.isFinite(sorted[last])) requireFinite('values', sorted);
+  requireThat(p >= 0 && p <= 1, 'p', 'p must lie between 0 and 1.');
+  const place = last * p;
+  const low = Math.floor(place);
+  const high = Math.min(low + 1, last);
+  return sorted[low] + (place - low) * (sorted[high] - sorted[low]);
 }

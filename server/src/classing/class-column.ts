@@ -3,11 +3,12 @@ import type { MonthlyCounts } from '@tallystone/contracts/binnings/months';
 import type { BinnedCharacteristic, DataReading } from '@tallystone/contracts/specification/types';
 import { type CarriedStep, type EarlierEdit, carriedEdges, carryEdits } from '@tallystone/numeric/bench';
 import { ReplayError } from '../replay/problems';
+import type { RowMonths } from '../replay/row-months';
 import type { SourceColumn } from '../replay/source';
 import type { Task } from '../threads/task';
 import { type Summarised, classFine, summarise } from './automatic';
 import { automaticClassing, withBins } from './definition';
-import { type CountedMonths, type RowMonths, countMonths } from './months';
+import { type CountedMonths, countMonths } from './months';
 import {
   type CountedRows,
   type DefinedCharacteristic,

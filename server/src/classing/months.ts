@@ -2,34 +2,10 @@ import type { Fine } from '@tallystone/contracts/binnings/bins';
 import type { MonthCounts, MonthlyCounts } from '@tallystone/contracts/binnings/months';
 import type { DataReading } from '@tallystone/contracts/specification/types';
 import { slotCount } from '@tallystone/numeric/bench';
-import { isoDay } from '../replay/columns';
-import type { ColumnSource, TextColumn } from '../replay/source';
+import { NO_MONTH, type RowMonths } from '../replay/row-months';
+import type { ColumnSource } from '../replay/source';
 import { DEVELOPMENT, HOLD_OUT, OUT, OUT_OF_TIME } from '../replay/types';
 import { type CountedRows, type DefinedCharacteristic, fineEntry, slotsOfTexts, textColumn } from './fine-classes';
-
-/** The month in which each row applied. */
-export interface RowMonths {
-  /** Index into `names`, NO_MONTH without an ISO date. */
-  readonly of: Uint16Array;
-  /** "2024-03", ascending. */
-  readonly names: readonly string[];
-}
-
-export const NO_MONTH = 0xffff;
-/** Twenty years: a column with more is no date of application. */
-const mostMonths = 240;
-
-/** Months of a column of dates, in memory that threads share; null where there are more than anybody reads. */
-export function monthsOfRows(dates: TextColumn): RowMonths | null {
-  const months = dates.texts.map((text) => isoDay(text)?.slice(0, 7) ?? null);
-  const names = [...new Set(months.filter((month) => month !== null))].sort();
-  if (names.length === 0 || names.length > mostMonths) return null;
-  const places = new Map(names.map((name, place) => [name, place]));
-  const byText = Uint16Array.from(months, (month) => (month === null ? NO_MONTH : (places.get(month) ?? NO_MONTH)));
-  const of = new Uint16Array(new SharedArrayBuffer(2 * dates.codes.length));
-  for (let row = 0; row < of.length; row++) of[row] = byText[dates.codes[row]];
-  return { of, names };
-}
 
 export interface CountedMonths {
   readonly counts: MonthlyCounts;

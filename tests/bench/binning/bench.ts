@@ -9,7 +9,7 @@
 import { AskedConstraints } from '@tallystone/contracts/binnings/bins';
 import { Generator } from '@tallystone/numeric/random/generator';
 import { Sequelize } from 'sequelize';
-import type { RowMonths } from '../../../server/src/classing/months';
+import type { RowMonths } from '../../../server/src/replay/row-months';
 import { classCharacteristics } from '../../../server/src/services/binnings/class-characteristics';
 import { stopThreads, runInThread, threadCount } from '../../../server/src/threads/run-in-thread';
 import { createTestDatabase } from '../../support/database';

@@ -1,10 +1,7 @@
-import { isByRule, outcomeColumns, outcomeWords } from '@tallystone/contracts/specification/outcome';
+import { isByRule, listed, outcomeColumns, outcomeWords } from '@tallystone/contracts/specification/outcome';
 import type { Writer } from '../page/writer';
 import { area, fixed, plural, rate, whole } from '../number-texts';
 import { isCovered, partitions } from './wording';
-
-const listed = (values: readonly string[]): string =>
-  values.length === 0 ? 'none' : values.map((value) => (value === '' ? '(empty)' : value)).join(', ');
 
 /** 5 Outcome and windows. */
 export function writeOutcome(writer: Writer): void {

@@ -1,17 +1,18 @@
 import type { ColumnQualityDetail, QualityGroup } from '@tallystone/contracts/samples/quality';
+import { quantileOfSorted } from '@tallystone/numeric';
+import { NO_MONTH } from '../../replay/row-months';
 import { type ColumnValues, MISSING, SPECIAL, UNREADABLE, VALUE } from './read-column';
 
 /** What is known of each row beside the column itself. */
 export interface RowFacts {
   /** 1 good, 0 bad, anything else not known; rows of out-of-time are never known. */
   readonly outcome: Uint8Array;
-  /** Place of the month of application, `noMonth` without one; null where no column says it. */
+  /** Place of the month of application, `NO_MONTH` without one; null where no column says it. */
   readonly month: Uint16Array | null;
   readonly months: number;
   /** The first so many months are what others are compared with; 0 = there is nothing to compare. */
   readonly baselineMonths: number;
 }
-export const noMonth = 0xffff;
 
 /** Everything that is counted in one column; what it means is said in judge.ts. */
 export interface ColumnMeasure {
@@ -50,14 +51,14 @@ export function measureColumn(values: ColumnValues, facts: RowFacts, specialLabe
     if (facts.outcome[row] === 1) entry.goods++;
     else if (facts.outcome[row] === 0) entry.bads++;
     else entry.unknown++;
-    if (facts.month && facts.month[row] !== noMonth) months[facts.month[row]][place]++;
+    if (facts.month && facts.month[row] !== NO_MONTH) months[facts.month[row]][place]++;
   }
   const kept = groups.map(({ rows: size }, place) => ({ size, place })).filter(({ size }) => size > 0);
   return {
     missing: states[MISSING],
     special: states.subarray(SPECIAL).reduce((sum, count) => sum + count, 0),
     unreadable: states[UNREADABLE],
-    quantiles: sorted && sorted.length > 0 ? quantileShares.map((share) => ({ share, value: quantile(sorted, share) })) : null,
+    quantiles: sorted && sorted.length > 0 ? quantileShares.map((share) => ({ share, value: quantileOfSorted(sorted, share) })) : null,
     ...outliersOf(sorted),
     groups: kept.map(({ place }) => groups[place]),
     histogram: sorted && sorted.length > 0 ? histogramOf(values, facts, sorted) : null,
@@ -72,17 +73,9 @@ function sortedNumbers({ state, numbers }: ColumnValues, count: number): Float64
   return all.sort();
 }
 
-/** Type 7 of R. J. Hyndman and Y. Fan, Sample Quantiles in Statistical Packages, 1996. */
-export function quantile(sorted: Float64Array, share: number): number {
-  const at = share * (sorted.length - 1);
-  const below = Math.floor(at);
-  const value = sorted[below];
-  return below + 1 < sorted.length ? value + (at - below) * (sorted[below + 1] - value) : value;
-}
-
 function outliersOf(sorted: Float64Array | null): Pick<ColumnMeasure, 'outliers' | 'furthest'> {
   if (!sorted || sorted.length === 0) return { outliers: null, furthest: null };
-  const [first, third] = [quantile(sorted, 0.25), quantile(sorted, 0.75)];
+  const [first, third] = [quantileOfSorted(sorted, 0.25), quantileOfSorted(sorted, 0.75)];
   const range = third - first;
   if (!(range > 0)) return { outliers: null, furthest: null };
   const [lower, upper] = [first - fence * range, third + fence * range];
@@ -192,7 +185,7 @@ function placesOfTexts(
 
 /** Bars of equal width between the first and the ninety-ninth hundredth, so that a few far values do not hide all others. */
 function histogramOf({ state, numbers }: ColumnValues, { outcome }: RowFacts, sorted: Float64Array): ColumnMeasure['histogram'] {
-  let [low, high] = [quantile(sorted, 0.01), quantile(sorted, 0.99)];
+  let [low, high] = [quantileOfSorted(sorted, 0.01), quantileOfSorted(sorted, 0.99)];
   if (low === high) [low, high] = [sorted[0], sorted[sorted.length - 1]];
   if (!numbers || low === high) return null;
   const empty = (): number[] => new Array<number>(bars).fill(0);

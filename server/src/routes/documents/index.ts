@@ -5,6 +5,7 @@ import { canMakeDocument, canReadVersion } from '../../policies/versions';
 import { findDocument, findDocuments, takeDocument } from '../../services/documents/find-document';
 import { startDocument } from '../../services/documents/store';
 import { findVersion } from '../../services/versions/find-version';
+import { sendAttachment } from '../http/attachment';
 import { type Route, defineRoute } from '../http/route';
 
 export const documentRoutes: readonly Route[] = [
@@ -39,13 +40,7 @@ export const documentRoutes: readonly Route[] = [
     authorise: ({ person, subject }) => canReadModel(person, subject.model),
     act: async ({ context, person, subject, response }) => {
       const bytes = await inTransaction(context.sequelize, (tx) => takeDocument(tx, subject, person));
-      response
-        .setHeader('Content-Type', 'application/pdf')
-        .setHeader('Content-Disposition', `attachment; filename="${subject.summary.fileName}"`)
-        .setHeader('Content-Length', bytes.length)
-        .setHeader('X-Content-Type-Options', 'nosniff')
-        .setHeader('Cache-Control', 'no-store')
-        .end(bytes);
+      sendAttachment(response, { name: subject.summary.fileName, type: 'application/pdf' }, bytes);
     },
   }),
 ];

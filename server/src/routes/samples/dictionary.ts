@@ -5,6 +5,7 @@ import { findCovered } from '../../services/out-of-time/cover';
 import { findDictionary, labelsOf, presentDictionary, writeDictionary } from '../../services/samples/dictionary/find';
 import { dictionaryFile, importDictionary } from '../../services/samples/dictionary/import';
 import { findSample } from '../../services/samples/find-sample';
+import { sendAttachment } from '../http/attachment';
 import { type Route, defineRoute } from '../http/route';
 
 /** 200 columns with long descriptions. */
@@ -43,13 +44,7 @@ export function dictionaryRoutes(): Route[] {
         findDictionary(context.sequelize, await findSample(context.sequelize, params.modelId, params.sampleId)),
       authorise: ({ person, subject }) => canReadSample(person, subject.sample),
       async act({ context, subject, response }) {
-        const bytes = await dictionaryFile(context, subject);
-        response
-          .setHeader('Content-Type', 'text/csv; charset=utf-8')
-          .setHeader('Content-Disposition', 'attachment; filename="dictionary.csv"')
-          .setHeader('X-Content-Type-Options', 'nosniff')
-          .setHeader('Cache-Control', 'no-store')
-          .end(bytes);
+        sendAttachment(response, { name: 'dictionary.csv', type: 'text/csv; charset=utf-8' }, await dictionaryFile(context, subject));
         return undefined;
       },
     }),

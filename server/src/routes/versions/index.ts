@@ -22,17 +22,12 @@ import { frozenText } from '../../services/versions/frozen-text';
 import { gatesOf } from '../../services/versions/gates';
 import { presentVersion, presentVersionSummary } from '../../services/versions/present-version';
 import { readTexts, saveTexts } from '../../services/versions/texts';
+import { sendAttachment } from '../http/attachment';
 import { type Route, defineRoute } from '../http/route';
 
 /** Canonical JSON as it was hashed, as a file. */
-function sendJson(response: Response, fileName: string, text: string): void {
-  response
-    .setHeader('Content-Type', 'application/json; charset=utf-8')
-    .setHeader('Content-Disposition', `attachment; filename="${fileName}"`)
-    .setHeader('X-Content-Type-Options', 'nosniff')
-    .setHeader('Cache-Control', 'no-store')
-    .end(text);
-}
+const sendJson = (response: Response, name: string, text: string): void =>
+  sendAttachment(response, { name, type: 'application/json; charset=utf-8' }, text);
 
 export const versionRoutes: readonly Route[] = [
   defineRoute(listVersions, {

@@ -4,9 +4,10 @@ import type { EarlierEdit } from '@tallystone/numeric/bench';
 import type { Sequelize } from 'sequelize';
 import type { ClassedColumn } from '../../classing/class-column';
 import type { CountedRows } from '../../classing/fine-classes';
-import type { RowMonths } from '../../classing/months';
+import type { RowMonths } from '../../replay/row-months';
 import { openSample } from '../../storage/columnStore';
 import { runInThread, threadCount } from '../../threads/run-in-thread';
+import { sharedBytes } from '../../threads/shared-bytes';
 import type { Barred } from './barred';
 
 export interface ColumnToClass {
@@ -32,17 +33,12 @@ export interface Classed {
 
 /** Assignments in memory that threads share instead of copying. */
 export function shared(counted: CountedRows): CountedRows {
-  const bytes = (from: Uint8Array): Uint8Array => {
-    const copy = new Uint8Array(new SharedArrayBuffer(from.length));
-    copy.set(from);
-    return copy;
-  };
   let weights: Float64Array | null = null;
   if (counted.weights) {
     weights = new Float64Array(new SharedArrayBuffer(counted.weights.byteLength));
     weights.set(counted.weights);
   }
-  return { rows: counted.rows, partition: bytes(counted.partition), outcome: bytes(counted.outcome), weights };
+  return { rows: counted.rows, partition: sharedBytes(counted.partition), outcome: sharedBytes(counted.outcome), weights };
 }
 
 /**

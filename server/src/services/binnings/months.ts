@@ -2,10 +2,11 @@ import type { Fine } from '@tallystone/contracts/binnings/bins';
 import type { CharacteristicMonths, MonthlyCounts } from '@tallystone/contracts/binnings/months';
 import type { SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
 import type { Sequelize, Transaction } from 'sequelize';
-import { type CountedMonths, type RowMonths, monthsOfRows } from '../../classing/months';
+import type { CountedMonths } from '../../classing/months';
 import type { CountedRows } from '../../classing/fine-classes';
 import { rows } from '../../database/sql';
 import { inTransaction } from '../../database/transaction';
+import { type RowMonths, monthsOfRows } from '../../replay/row-months';
 import { textsOf } from '../../replay/source';
 import { openSample } from '../../storage/columnStore';
 import { runInThread } from '../../threads/run-in-thread';
@@ -15,6 +16,9 @@ import { shared } from './class-characteristics';
 import type { FoundCharacteristic, OnBench } from './find-characteristic';
 
 /** Slots by month lie apart from their characteristic: they are many, and only its bench and its saves read them. */
+
+/** Twenty years: a column with more is no date of application. */
+const mostMonths = 240;
 
 /** The column that says when somebody applied. */
 export const dateColumnOf = (content: SampleDefinitionContent): string | null =>
@@ -30,7 +34,7 @@ export async function loadRowMonths(
   if (name === null) return null;
   const source = await openSample(sequelize, sampleId, [name]);
   const dates = source.column(name);
-  return dates ? monthsOfRows(textsOf(dates, source.rows)) : null;
+  return dates ? monthsOfRows(textsOf(dates, source.rows), { most: mostMonths, gaps: false }) : null;
 }
 
 /** What is stored of one characteristic: null where its sample has no months, undefined where they have not been counted yet. */

@@ -1,4 +1,5 @@
 import type { DifferingSetting } from '@tallystone/contracts/comparison/schema';
+import { inferenceNames } from '@tallystone/contracts/fits/inference';
 import { outcomeColumns, outcomeWords } from '@tallystone/contracts/specification/outcome';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import type { z } from 'zod';
@@ -27,7 +28,7 @@ const declined = (specification: Specification): string => {
   if (specification.declined === null) return 'none';
   const { method, bands, uplift } = specification.declined;
   if (method === 'none') return 'take no part';
-  return method === 'parcelling' ? `parcelling, ${bands} bands, uplift ${uplift}` : method === 'fuzzy' ? 'fuzzy' : 're-weighting';
+  return method === 'parcelling' ? `${inferenceNames[method]}, ${bands} bands, uplift ${uplift}` : inferenceNames[method];
 };
 
 const columnsWhere = (specification: Specification, holds: (entry: Specification['characteristics'][number]) => boolean): string =>

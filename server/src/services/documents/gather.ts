@@ -1,6 +1,7 @@
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
 import type { SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
 import type { ColumnLabels } from '@tallystone/contracts/samples/dictionary';
+import { takesPart } from '@tallystone/contracts/samples/flags';
 import type { QualityReport } from '@tallystone/contracts/samples/quality';
 import type { Result } from '@tallystone/contracts/result/types';
 import type { Specification } from '@tallystone/contracts/specification/types';
@@ -287,11 +288,11 @@ function columnsOf({ characteristics }: Result, sample: SampleEvidence | null): 
 /** What the quality report raised and how it was answered when the version was frozen. */
 function flagsOf({ content, number }: { content: SampleEvidence; number: string }): DocumentInput['qualityFlags'] {
   if (!content.report) return null;
-  const out = new Set(content.report.columns.filter(({ role }) => role === 'not used' || role === 'identifier').map(({ column }) => column));
+  const roles = new Map(content.report.columns.map(({ column, role }) => [column, role]));
   return {
     evidence: number,
     madeAt: content.report.madeAt,
-    flags: content.report.flags.map(({ column, weight, finding, answer }) => ({ column, weight, finding, answer, takesPart: column === null || !out.has(column) })),
+    flags: content.report.flags.map(({ column, weight, finding, answer }) => ({ column, weight, finding, answer, takesPart: column === null || takesPart(roles.get(column)) })),
   };
 }
 

@@ -1,4 +1,4 @@
-import type { ChoiceRule, FitSettings, FitState } from '@tallystone/contracts/fits/schema';
+import { type ChoiceRule, type FitSettings, type FitState, noInference } from '@tallystone/contracts/fits/schema';
 import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import type { RunState } from '@tallystone/contracts/runs/schema';
 import type { Sequelize, Transaction } from 'sequelize';
@@ -84,7 +84,7 @@ export async function findFits(sequelize: Sequelize, modelId: string, tx: Transa
 }
 
 const laterSettings: Pick<FitSettings, 'declined' | 'priorCorrection'> = {
-  declined: { method: 'none', bands: 10, uplift: 1.5, reason: '' },
+  declined: noInference,
   priorCorrection: null,
 };
 

@@ -1,5 +1,5 @@
 import { randomUUID } from 'node:crypto';
-import type { FitSettings } from '@tallystone/contracts/fits/schema';
+import { type FitSettings, noInference } from '@tallystone/contracts/fits/schema';
 import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import { problemCodes } from '@tallystone/contracts/problems/codes';
 import canonicalize from 'canonicalize';
@@ -108,7 +108,7 @@ async function acceptsOnly(context: Context, tx: Transaction, asked: Parameters<
   const alone: FitSettings = {
     ...asked.settings,
     name: `${asked.settings.name.slice(0, 105)}, accepts only`,
-    declined: { method: 'none', bands: 10, uplift: 1.5, reason: '' },
+    declined: noInference,
   };
   const but = (settings: FitSettings): string | undefined => canonicalize({ ...settings, name: '' });
   const wanted = but(alone);

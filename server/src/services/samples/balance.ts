@@ -6,10 +6,13 @@ import { rows } from '../../database/sql';
 import type { Prepared } from '../../replay/types';
 import { openSample } from '../../storage/columnStore';
 import { runInThread } from '../../threads/run-in-thread';
+import { sharedBytes } from '../../threads/shared-bytes';
 import type { FoundSample } from './find-sample';
+import { inTurn } from './in-turn';
 
 /**
- * How each characteristic is spread in the partitions of a definition. One column is in memory at a time.
+ * How each characteristic is spread in the partitions of a definition, in the worker threads. Each thread has one column in memory; who is in which
+ * partition is shared.
  *
  * @param onColumn called after each with how many are done, of how many
  */
@@ -17,19 +20,20 @@ export async function balanceOf(
   context: Context,
   sample: FoundSample,
   content: SampleDefinitionContent,
-  prepared: Pick<Prepared, 'partition' | 'outcome'>,
-  options: { readonly signal: AbortSignal; readonly onColumn: (done: number, count: number) => void },
+  { partition, outcome }: Pick<Prepared, 'partition' | 'outcome'>,
+  { signal, onColumn }: { readonly signal: AbortSignal; readonly onColumn: (done: number, count: number) => void },
 ): Promise<CharacteristicBalance[]> {
   const characteristics = content.columns.filter(({ role }) => role === 'characteristic');
-  const found: CharacteristicBalance[] = [];
-  for (const column of characteristics) {
+  const prepared = { partition: sharedBytes(partition), outcome: sharedBytes(outcome) };
+  const found = new Map<string, CharacteristicBalance>();
+  await inTurn(characteristics, async (column) => {
+    signal.throwIfAborted();
     const source = (await openSample(context.sequelize, sample.id, [column.column])).column(column.column);
     if (!source) throw new Error(`The sample has no column ${column.column}`);
-    const { partition, outcome } = prepared;
-    found.push(await runInThread('sample.balance', { column, source, data: content.data, prepared: { partition, outcome } }, { signal: options.signal }));
-    options.onColumn(found.length, characteristics.length);
-  }
-  return found;
+    found.set(column.column, await runInThread('sample.balance', { column, source, data: content.data, prepared }, { signal }));
+    onColumn(found.size, characteristics.length);
+  });
+  return characteristics.flatMap(({ column }) => found.get(column) ?? []);
 }
 
 export async function storeBalance(

@@ -1,3 +1,4 @@
+import type { SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
 import type { PartitionName } from '@tallystone/contracts/result/types';
 import type { Sequelize } from 'sequelize';
 import { compare } from '../comparison/compare';
@@ -17,7 +18,9 @@ export interface ComparedWith {
 const partitions: readonly PartitionName[] = ['development', 'holdOut', 'outOfTime'];
 
 /** What always stands beside a fit when it is frozen: the fit on accepted applicants alone, and the incumbent scores of its sample. Covered figures take no part. */
-export async function comparedWith(sequelize: Sequelize, fit: FoundFit): Promise<ComparedWith[]> {
+export async function comparedWith(sequelize: Sequelize, fit: FoundFit, { columns }: Pick<SampleDefinitionContent, 'columns'>): Promise<ComparedWith[]> {
+  // Nothing stands beside most fits: then nothing is scored again.
+  if (fit.acceptsOnlyId === null && !columns.some(({ role }) => role === 'incumbent score')) return [];
   const comparison = await compare(sequelize, fit.modelId, [fit.id]);
   const minus = (value: number | null): number | null => (value === null ? null : -value);
   const beside = comparison.fits.slice(1).flatMap((other) =>

@@ -107,7 +107,7 @@ export async function replayForFreezing(
   if (!(distance <= 1e-9 * Math.max(1, fit.choice.lambda))) {
     throw new Error(`Replaying chose penalty ${place} where ${fit.choice.lambda} was chosen on the path`);
   }
-  const compared = await comparedWith(sequelize, fit);
+  const compared = await comparedWith(sequelize, fit, definition.content);
   return { fit, definition, loaded, dataSha256, specification, frozen, compared };
 }
 

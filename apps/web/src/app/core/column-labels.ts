@@ -1,6 +1,7 @@
 import { httpResource } from '@angular/common/http';
 import { type Signal, computed } from '@angular/core';
 import type { ColumnLabels } from '@tallystone/contracts/samples/dictionary';
+import { labelWords } from '@tallystone/contracts/samples/labels';
 
 /**
  * How the columns of a sample are called: "Card utilisation (%)" by column; columns that the dictionary does not name are not in it. Call in an
@@ -15,6 +16,6 @@ export function columnLabels(definitionId: () => string | null): Signal<Readonly
   });
   return computed(() => {
     const labels = read.hasValue() ? read.value().labels : [];
-    return new Map(labels.map(({ column, label, unit }) => [column, unit ? `${label || column} (${unit})` : label]));
+    return new Map(labels.map((entry) => [entry.column, labelWords(entry)]));
   });
 }

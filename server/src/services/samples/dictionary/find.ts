@@ -1,4 +1,5 @@
 import type { CarriedDictionary, ColumnLabels, Dictionary, DictionaryEntry } from '@tallystone/contracts/samples/dictionary';
+import { labelWords } from '@tallystone/contracts/samples/labels';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../../database/sql';
 import type { Actor } from '../../../models/person';
@@ -94,6 +95,5 @@ export async function labelsOf(sequelize: Sequelize, definitionId: string, tx: T
 /** How a column is called: "Card utilisation (%)", or its heading where the dictionary has no words for it. */
 export function labelOf(labels: ColumnLabels['labels'], column: string): string {
   const found = labels.find((entry) => entry.column === column);
-  const label = found?.label || column;
-  return found?.unit ? `${label} (${found.unit})` : label;
+  return found ? labelWords(found) : column;
 }

@@ -5,9 +5,9 @@ import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../../database/sql';
 import type { RunContext } from '../../../jobs/handler';
 import { type RaisedFlag, judgeColumn, judgeFile } from '../../../profiling/quality/judge';
-import { type RowFacts, noMonth } from '../../../profiling/quality/measure';
+import type { RowFacts } from '../../../profiling/quality/measure';
 import type { Needed } from '../../../profiling/quality/read-column';
-import { isoDay } from '../../../replay/columns';
+import { NO_MONTH, type RowMonths, monthsOfRows } from '../../../replay/row-months';
 import type { TextColumn } from '../../../replay/source';
 import { BAD, DEVELOPMENT, GOOD, HOLD_OUT, type Prepared } from '../../../replay/types';
 import { readContents, readStoredColumn } from '../../../storage/columnStore';
@@ -50,9 +50,10 @@ export async function makeReport(
   const defined = new Map(definition.content.columns.map((column) => [column.column, column]));
   const outcome = knownOutcome(await loadPrepared(sequelize, definitionId));
   const dates = await datesOf(sequelize, sample, profiles, defined);
-  const { monthOf, months } = countMonths(dates, outcome);
+  const applied = dates && monthsOfRows(dates, { most: mostMonths, gaps: true });
+  const months = applied ? countMonths(applied, outcome) : [];
   const baselineMonths = months.length > firstYear ? firstYear : 0;
-  const facts: RowFacts = { outcome, month: monthOf, months: months.length, baselineMonths };
+  const facts: RowFacts = { outcome, month: applied?.of ?? null, months: months.length, baselineMonths };
 
   const columns: ColumnQualityDetail[] = [];
   const raised = new Map<number, RaisedFlag[]>();
@@ -142,44 +143,18 @@ function datesOf(
   return readStoredColumn(sequelize, sample.readingId, profile.position, sample.rows);
 }
 
-interface CountedMonths {
-  readonly monthOf: Uint16Array | null;
-  /** Every month from the first to the last, those without rows among them. */
-  readonly months: QualityMonth[];
-}
-
-function countMonths(dates: TextColumn | null, outcome: Uint8Array): CountedMonths {
-  const none: CountedMonths = { monthOf: null, months: [] };
-  if (!dates) return none;
-  const ordinals = dates.texts.map((text) => {
-    const day = isoDay(text);
-    return day === null ? null : Number(day.slice(0, 4)) * 12 + Number(day.slice(5, 7)) - 1;
-  });
-  const there = ordinals.filter((ordinal) => ordinal !== null);
-  if (there.length === 0) return none;
-  const first = there.reduce((least, ordinal) => Math.min(least, ordinal));
-  const last = there.reduce((most, ordinal) => Math.max(most, ordinal));
-  if (last - first >= mostMonths) return none;
-  const months = Array.from({ length: last - first + 1 }, (_, place) => ({
-    month: `${String(Math.floor((first + place) / 12)).padStart(4, '0')}-${String(((first + place) % 12) + 1).padStart(2, '0')}`,
-    rows: 0,
-    goods: 0,
-    bads: 0,
-    unknown: 0,
-  }));
-  const places = ordinals.map((ordinal) => (ordinal === null ? noMonth : ordinal - first));
-  const monthOf = new Uint16Array(new SharedArrayBuffer(outcome.length * 2));
-  for (let row = 0; row < outcome.length; row++) {
-    const place = places[dates.codes[row]];
-    monthOf[row] = place;
-    if (place === noMonth) continue;
-    const month = months[place];
+/** Rows and known outcomes of every month from the first to the last. */
+function countMonths({ of, names }: RowMonths, outcome: Uint8Array): QualityMonth[] {
+  const months = names.map((month) => ({ month, rows: 0, goods: 0, bads: 0, unknown: 0 }));
+  for (let row = 0; row < of.length; row++) {
+    if (of[row] === NO_MONTH) continue;
+    const month = months[of[row]];
     month.rows++;
     if (outcome[row] === 1) month.goods++;
     else if (outcome[row] === 0) month.bads++;
     else month.unknown++;
   }
-  return { monthOf, months };
+  return months;
 }
 
 function neededOf(profile: ColumnProfile, { kind }: DefinedColumn): Needed {

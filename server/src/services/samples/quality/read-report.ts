@@ -1,11 +1,5 @@
-import type {
-  ColumnQuality,
-  ColumnQualityDetail,
-  FlagAnswer,
-  QualityFlag,
-  QualityReport,
-  QualityState,
-} from '@tallystone/contracts/samples/quality';
+import { waitsForAnswer } from '@tallystone/contracts/samples/flags';
+import type { ColumnQuality, ColumnQualityDetail, FlagAnswer, QualityFlag, QualityReport, QualityState } from '@tallystone/contracts/samples/quality';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../../database/sql';
 import type { Actor } from '../../../models/person';
@@ -122,16 +116,10 @@ async function answersOf(sequelize: Sequelize, sampleId: string, tx: Transaction
   );
 }
 
-/** What still asks somebody: more than a note, without an answer, of the file or of a column that takes part. */
-export function isOpen(flag: QualityFlag, columns: readonly Pick<ColumnQuality, 'column' | 'role'>[]): boolean {
-  if (flag.weight === 'note' || flag.answer) return false;
-  const role = columns.find(({ column }) => column === flag.column)?.role;
-  return flag.column === null || (role !== 'not used' && role !== 'identifier');
-}
-
 function findingOf(count: number, columns: readonly ColumnQuality[], flags: readonly QualityFlag[]): string {
   const whole = `${thin(count)} rows and ${columns.length} columns`;
-  const open = flags.filter((flag) => isOpen(flag, columns));
+  const roles = new Map(columns.map(({ column, role }) => [column, role]));
+  const open = flags.filter((flag) => waitsForAnswer(flag, flag.column === null ? null : roles.get(flag.column)));
   if (open.length === 0) return `${whole}; no flag waits for an answer.`;
   const leaks = open.filter(
     ({ code }) => code === 'leakage-value' || code === 'missing-one-outcome' || code === 'one-value-per-outcome',

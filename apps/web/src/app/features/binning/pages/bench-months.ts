@@ -1,11 +1,16 @@
 import { ChangeDetectionStrategy, Component, computed, effect, input } from '@angular/core';
+import { toObservable, toSignal } from '@angular/core/rxjs-interop';
 import { MatButtonModule } from '@angular/material/button';
 import { fewestToRead, type BenchReading, type Bins, type FineClasses } from '@tallystone/numeric/bench';
+import { debounceTime } from 'rxjs';
 import { ProblemList } from '../../../ui/problem-list';
 import { count, plural } from '../../../ui/numbers';
 import { monthsOf } from '../data/binnings';
 import { MonthsFigure } from '../ui/months-figure';
 import { fits } from '../ui/months-view';
+
+/** How long bins have to rest before they are drawn over time. */
+const SETTLED_MS = 150;
 
 /** The part of the bench that shows its bins over time. Counts come by themselves, so that the bench does not wait for them. */
 @Component({
@@ -19,7 +24,7 @@ import { fits } from '../ui/months-view';
     </ts-problems>
     @if (shown(); as shown) {
       @if (shown.dateColumn) {
-        <ts-months-figure [fine]="fine()" [bins]="bins()" [reading]="reading()" [months]="shown" />
+        <ts-months-figure [fine]="drawn().fine" [bins]="drawn().bins" [reading]="drawn().reading" [months]="shown" />
         <p class="ts-caption">
           Bar: development, circle: hold-out{{ fine().outOfTime ? ', diamond: out-of-time' : '' }}, each with its 95 % interval
           from its own counts. Broken line: the bin over all of development; every strip has the same scale about its own line.
@@ -61,9 +66,13 @@ export class BenchMonths {
     () => this.binningId(),
     () => this.characteristicId(),
   );
+  private readonly now = computed(() => ({ fine: this.fine(), bins: this.bins(), reading: this.reading() }));
+  private readonly settled = toSignal(toObservable(this.now).pipe(debounceTime(SETTLED_MS)), { initialValue: null });
+  /** The bins once they rest: hundreds of marks are not drawn anew with every step of a drag. */
+  protected readonly drawn = computed(() => this.settled() ?? this.now());
   protected readonly shown = computed(() => {
     const months = this.months.hasValue() ? this.months.value() : null;
-    return months && fits(this.fine(), months) ? months : null;
+    return months && fits(this.drawn().fine, months) ? months : null;
   });
   protected readonly undatedWords = computed(() => {
     const undated = this.shown()?.undated ?? 0;

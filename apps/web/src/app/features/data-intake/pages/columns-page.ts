@@ -27,6 +27,7 @@ import { flagsOf, mostFrequentOf, rangeOf } from '../ui/findings';
 import { SampleSteps } from '../ui/sample-steps';
 import { SaveStateNote } from '../ui/save-state';
 import type { DefinedColumn } from '@tallystone/contracts/samples/definition';
+import { labelWords } from '@tallystone/contracts/samples/labels';
 
 interface Row {
   readonly profile: ColumnProfile;
@@ -202,11 +203,11 @@ export class ColumnsPage {
     const profiles = this.columns.hasValue() ? this.columns.value().columns : [];
     const defined = new Map((this.draft.content()?.columns ?? []).map((entry) => [entry.column, entry]));
     return profiles.map((profile) => {
-      const { label, unit } = this.words.entry(profile.column);
+      const entry = this.words.entry(profile.column);
       return {
         profile,
         defined: defined.get(profile.column) ?? null,
-        label: unit ? `${label || profile.column} (${unit})` : label,
+        label: entry.label || entry.unit ? labelWords(entry) : '',
       };
     });
   });

@@ -3,6 +3,7 @@ import { takeUntilDestroyed } from '@angular/core/rxjs-interop';
 import { MatButtonModule } from '@angular/material/button';
 import { Router, RouterLink } from '@angular/router';
 import { filter } from 'rxjs';
+import { takesPart } from '@tallystone/contracts/samples/flags';
 import { Runs } from '../../../core/events/runs';
 import { newIdempotencyKey } from '../../../core/http/etag';
 import { Task } from '../../../core/task';
@@ -11,7 +12,7 @@ import type { Column } from '../../../ui/column';
 import { CellTemplate, DenseTable } from '../../../ui/dense-table';
 import { EmptyState } from '../../../ui/empty-state';
 import { CountPipe, MomentPipe } from '../../../ui/number-pipes';
-import { count, plural, share } from '../../../ui/numbers';
+import { plural, share } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
@@ -160,7 +161,7 @@ export class QualityPage {
 
   private readonly rows = computed(() => Math.max(1, this.report()?.rows ?? 1));
   protected readonly byColumn = (row: ColumnQuality): string => row.column;
-  protected readonly isQuiet = (row: ColumnQuality): boolean => row.role === 'not used' || row.role === 'identifier';
+  protected readonly isQuiet = (row: ColumnQuality): boolean => !takesPart(row.role);
   protected readonly isSelected = (row: ColumnQuality): boolean => row.column === this.chosen()?.column;
 
   protected async choose(column: string, scroll = false): Promise<void> {
@@ -202,7 +203,6 @@ export class QualityPage {
     if (state) this.state.set(state);
   }
 
-  protected readonly count = count;
 }
 
 const at = ({ quantiles }: ColumnQuality, wanted: number): number | null =>

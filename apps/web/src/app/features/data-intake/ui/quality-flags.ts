@@ -1,5 +1,6 @@
 import { ChangeDetectionStrategy, Component, computed, input, output } from '@angular/core';
 import { MatButtonModule } from '@angular/material/button';
+import { takesPart } from '@tallystone/contracts/samples/flags';
 import type { ColumnQuality, QualityFlag } from '@tallystone/contracts/samples/quality';
 import { MomentPipe } from '../../../ui/number-pipes';
 import { flagTitle, inOrder, waits } from './quality-words';
@@ -138,7 +139,7 @@ export class QualityFlags {
       title: flagTitle(flag),
       name: `${flag.column ?? 'the file'}, ${flagTitle(flag)}`,
       waits: waits(flag, this.roles()),
-      out: flag.column !== null && ['not used', 'identifier'].includes(this.roles().get(flag.column) ?? ''),
+      out: flag.column !== null && !takesPart(this.roles().get(flag.column)),
     })),
   );
 }

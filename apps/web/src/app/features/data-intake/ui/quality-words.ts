@@ -1,11 +1,9 @@
+import { waitsForAnswer } from '@tallystone/contracts/samples/flags';
 import type { ColumnQuality, QualityFlag } from '@tallystone/contracts/samples/quality';
 
-/** Whether a flag still asks somebody: more than a note, without an answer, of the file or of a column that takes part. */
-export function waits(flag: QualityFlag, roles: ReadonlyMap<string, ColumnQuality['role']>): boolean {
-  if (flag.weight === 'note' || flag.answer) return false;
-  const role = flag.column === null ? null : roles.get(flag.column);
-  return role !== 'not used' && role !== 'identifier';
-}
+/** Whether a flag still asks somebody, by the roles of the report's columns. */
+export const waits = (flag: QualityFlag, roles: ReadonlyMap<string, ColumnQuality['role']>): boolean =>
+  waitsForAnswer(flag, flag.column === null ? null : roles.get(flag.column));
 
 const words: Partial<Record<QualityFlag['code'], string>> = {
   'duplicate-rows': 'Duplicate rows',

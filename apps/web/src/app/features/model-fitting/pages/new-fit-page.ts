@@ -43,18 +43,15 @@ const treatmentGroup = (column: string) =>
 const number = (value: number, low: number, high: number) =>
   new FormControl(value, { nonNullable: true, validators: [Validators.required, Validators.min(low), Validators.max(high)] });
 
-/** An inference and a prior correction each need their reason. */
-function reasonsWhereChosen(form: AbstractControl): ValidationErrors | null {
-  const demand = (name: string, wanted: boolean): boolean => {
-    const control = form.get(name);
-    const missing = wanted && (control?.value as string).trim() === '';
-    control?.setErrors(missing ? { required: true } : null);
-    return missing;
-  };
-  const inference = demand('declinedReason', form.get('declined')?.value !== 'none');
-  const correction = demand('correctionReason', form.get('corrected')?.value === true);
-  return inference || correction ? { reason: true } : null;
-}
+/** Text that is asked for only while another control has a certain value; blanks are no text. */
+const neededWhile = (other: string, holds: (value: unknown) => boolean) =>
+  new FormControl('', {
+    nonNullable: true,
+    validators: [
+      ({ parent, value }: AbstractControl<string>): ValidationErrors | null =>
+        parent && holds(parent.get(other)?.value) && value.trim() === '' ? { required: true } : null,
+    ],
+  });
 
 /** The settings of a new fit: penalty, path, folds, and how each characteristic enters. */
 @Component({
@@ -101,12 +98,12 @@ export class NewFitPage {
     declined: new FormControl<DeclinedMethod>('none', { nonNullable: true }),
     bands: number(10, 2, 100),
     uplift: number(1.5, 0.1, 20),
-    declinedReason: new FormControl('', { nonNullable: true }),
+    declinedReason: neededWhile('declined', (method) => method !== 'none'),
     corrected: new FormControl(false, { nonNullable: true }),
     populationPercent: number(5, 0.001, 99.999),
-    correctionReason: new FormControl('', { nonNullable: true }),
+    correctionReason: neededWhile('corrected', (on) => on === true),
     treatments: this.treatments,
-  }, { validators: reasonsWhereChosen });
+  });
 
   protected readonly binnings = this.fits.binnings(() => this.modelId());
   protected readonly ready = computed(() => (this.binnings.hasValue() ? this.binnings.value().binnings.filter((entry) => entry.state === 'ready') : []));
@@ -150,14 +147,19 @@ export class NewFitPage {
     });
   }
 
-  /** What is not asked for any more cannot stand in the way. */
+  /** What is not asked for any more cannot stand in the way, and what is asked for now has to be there. */
   private resetHidden(): void {
-    const { corrected, populationPercent, declined, bands, uplift } = this.form.controls;
-    corrected.valueChanges.pipe(takeUntilDestroyed()).subscribe((on) => on || populationPercent.reset());
+    const { corrected, populationPercent, correctionReason, declined, bands, uplift, declinedReason } = this.form.controls;
+    corrected.valueChanges.pipe(takeUntilDestroyed()).subscribe((on) => {
+      if (!on) populationPercent.reset();
+      correctionReason.updateValueAndValidity();
+    });
     declined.valueChanges.pipe(takeUntilDestroyed()).subscribe((method) => {
-      if (method === 'parcelling') return;
-      bands.reset();
-      uplift.reset();
+      if (method !== 'parcelling') {
+        bands.reset();
+        uplift.reset();
+      }
+      declinedReason.updateValueAndValidity();
     });
   }
 

@@ -1,6 +1,7 @@
+import { inferenceNames } from '@tallystone/contracts/fits/inference';
 import type { DeclinedMethod, FitPath } from '@tallystone/contracts/fits/schema';
 import { scaleToPoints } from '@tallystone/numeric/scaling/points';
-import { inferenceCaution, inferenceNames } from '../../../ui/inference';
+import { inferenceCaution } from '../../../ui/inference';
 import { fixed, plural, share, significant } from '../../../ui/numbers';
 
 /** One characteristic at one penalty, as the column beside the figure lists it. */
