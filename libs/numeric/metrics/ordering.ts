@@ -69,6 +69,7 @@ export function quantileType7(values: ArrayLike<number>, p: number): number {
  * Source: as `quantileType7`.
  */
 export function quantilesType7(values: ArrayLike<number>, probabilities: readonly number[]): number[] {
+  requireSome(values);
   requireFinite('values', values);
   const sorted = Float64Array.from(values).sort();
   return probabilities.map((p) => quantileOfSorted(sorted, p));
@@ -83,7 +84,7 @@ export function quantilesType7(values: ArrayLike<number>, probabilities: readonl
  * Source: as `quantileType7`.
  */
 export function quantileOfSorted(sorted: Float64Array, p: number): number {
-  if (sorted.length === 0) throw new NumericError('no-rows', 'A quantile needs at least one value.', { name: 'values' });
+  requireSome(sorted);
   const last = sorted.length - 1;
   if (!Number.isFinite(sorted[0]) || !Number.isFinite(sorted[last])) requireFinite('values', sorted);
   requireThat(p >= 0 && p <= 1, 'p', 'p must lie between 0 and 1.');
@@ -91,4 +92,8 @@ export function quantileOfSorted(sorted: Float64Array, p: number): number {
   const low = Math.floor(place);
   const high = Math.min(low + 1, last);
   return sorted[low] + (place - low) * (sorted[high] - sorted[low]);
+}
+
+function requireSome(values: ArrayLike<number>): void {
+  if (values.length === 0) throw new NumericError('no-rows', 'A quantile needs at least one value.', { name: 'values' });
 }

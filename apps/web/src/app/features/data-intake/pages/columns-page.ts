@@ -84,7 +84,7 @@ interface Row {
       <div class="ts-split">
         <ts-table
           caption="Columns of the sample"
-          [columns]="table"
+          [columns]="table()"
           [rows]="rows()"
           [identify]="byColumn"
           [quiet]="isQuiet"
@@ -216,12 +216,13 @@ export class ColumnsPage {
   );
   protected readonly order = computed<TableSort | null>(() => {
     const [key, direction] = (this.sort() ?? '').split('.');
-    return this.table.some((entry) => entry.key === key) ? { key, descending: direction === 'down' } : null;
+    return this.table().some((entry) => entry.key === key) ? { key, descending: direction === 'down' } : null;
   });
 
-  protected readonly table: readonly Column<Row>[] = [
+  protected readonly table = computed<readonly Column<Row>[]>(() => [
     { key: 'column', label: 'Column', value: (row) => row.profile.column, sortable: true },
-    { key: 'label', label: 'Label', value: (row) => row.label, sortable: true },
+    // Without a label for any column it would only take room.
+    ...(this.rows().some(({ label }) => label !== '') ? [{ key: 'label', label: 'Label', value: (row: Row) => row.label, sortable: true }] : []),
     {
       key: 'role',
       label: 'Role',
@@ -247,7 +248,7 @@ export class ColumnsPage {
       width: 30,
       sortable: true,
     },
-  ];
+  ]);
 
   constructor() {
     warnBeforeUnload(() => this.unsaved());

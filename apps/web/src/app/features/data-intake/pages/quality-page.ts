@@ -20,6 +20,7 @@ import { type ColumnQuality, Samples, columnQualityOf, oneSample, qualityOf } fr
 import { plain } from '../ui/findings';
 import { type AskedAnswer, QualityFlags } from '../ui/quality-flags';
 import { QualityGroups } from '../ui/quality-groups';
+import { QualityHistogram } from '../ui/quality-histogram';
 import { type MonthValue, QualityMonths } from '../ui/quality-months';
 import { flagTitle, waits } from '../ui/quality-words';
 import { SampleSteps } from '../ui/sample-steps';
@@ -41,6 +42,7 @@ import { SampleSteps } from '../ui/sample-steps';
     ProblemList,
     QualityFlags,
     QualityGroups,
+    QualityHistogram,
     QualityMonths,
     RunProgress,
     SampleSteps,
@@ -164,9 +166,10 @@ export class QualityPage {
   protected readonly isQuiet = (row: ColumnQuality): boolean => !takesPart(row.role);
   protected readonly isSelected = (row: ColumnQuality): boolean => row.column === this.chosen()?.column;
 
-  protected async choose(column: string, scroll = false): Promise<void> {
+  /** Shows a column's figures, which stand above the table so that they are seen wherever in it the column was chosen. */
+  protected async choose(column: string): Promise<void> {
     await this.router.navigate([], { queryParams: { column }, queryParamsHandling: 'merge', replaceUrl: true });
-    if (scroll || globalThis.innerWidth < 900) this.columnPart()?.nativeElement.scrollIntoView({ block: 'start' });
+    this.columnPart()?.nativeElement.scrollIntoView({ block: 'start' });
   }
 
   protected print(): void {
