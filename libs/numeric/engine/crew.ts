@@ -1,3 +1,4 @@
+import type { FoldBatch } from './fold-batch';
 import { joinMachine, type Machine } from './kernels/kernels';
 
 /**
@@ -13,6 +14,8 @@ export interface Crew {
   run(work: Work, description: number, count: number): void;
   /** Lets the helpers go; the memory may be forgotten. */
   leave(): void;
+  /** Sends folds to another thread, which calls `helpFolds` with them; absent = there is none for that. */
+  readonly delegate?: (batch: FoldBatch) => void;
 }
 
 export type Work = 'pass32' | 'pass64' | 'gram';
@@ -25,11 +28,16 @@ export interface CrewPlaces {
   readonly scratchBytes: number;
 }
 
-/** The caller alone. */
+/**
+ * The caller alone on its passes. Of a small problem, whose passes are over before another thread has woken, that other thread may do folds as a whole.
+ * @example new Alone((batch) => worker.postMessage(batch))
+ */
 export class Alone implements Crew {
   readonly helpers = 0;
   private machine: Machine | null = null;
   private scratch = 0;
+
+  constructor(readonly delegate?: (batch: FoldBatch) => void) {}
 
   join(machine: Machine, at: CrewPlaces): void {
     this.machine = machine;

@@ -6,6 +6,7 @@ import type { Fit, Grid, Path } from '../penalised/problem';
 import { requireLambda } from '../penalised/validation';
 import type { CodedColumn, CodedProblem } from './coded-columns';
 import { Alone, type Crew } from './crew';
+import { FoldSheet } from './fold-batch';
 import { follow, type Follower } from './follow';
 import type { KernelKind } from './kernels/kernels';
 import { copyPoint, pointOf, residualAt, type Lane, type Point } from './lane';
@@ -49,6 +50,38 @@ export interface EngineFolds {
     fit: { intercept: number; coefficients: Float64Array; optimalityResidual: number },
   ) => void;
 }
+
+/** Folds `first` to `end - 1` (from 0) that are followed together. */
+export interface FollowedFolds {
+  readonly guide: readonly Point[];
+  readonly lambdas: readonly number[];
+  readonly first: number;
+  readonly end: number;
+  readonly tolerance: number;
+  /** Values by code of each column in a fold; null = those of the problem. */
+  readonly valuesFor: (fold: number) => readonly ArrayLike<number>[] | null;
+}
+
+export interface FoldArrival {
+  /** From 0. */
+  readonly fold: number;
+  readonly place: number;
+  /** Mean deviance over the fold. */
+  readonly deviance: number;
+  readonly residual: number;
+  readonly fit: () => { intercept: number; coefficients: Float64Array };
+}
+
+export interface FoldEvents {
+  readonly onArrival: (arrival: FoldArrival) => void;
+  /** A fold was given up at a place. */
+  readonly onFailure: (fold: number, place: number) => void;
+  /** Share of the work that is done, after every pass; it may throw to stop. */
+  readonly onPass?: (share: number) => void;
+}
+
+/** Where no fit was asked for. */
+const none = { intercept: NaN, coefficients: new Float64Array(0) };
 
 /** Folds that did not converge have no deviances: `null`. */
 export interface EngineCrossValidation {
@@ -345,62 +378,128 @@ export class Engine {
     this.guide = { lambdas: fits.map(({ lambda }) => lambda), points: lanes.map(({ point }) => point) };
   }
 
-  /** Folds at exactly the given lambdas, several at once. */
+  /** Folds at exactly the given lambdas, several at once; of few rows, half of the folds by another thread where the crew has one. */
   crossValidate(lambdas: readonly number[], options: EngineFolds = {}): EngineCrossValidation {
-    const { layout, problem, full } = this;
+    const { layout } = this;
+    const count = layout.folds;
     const guide = this.guideTo(lambdas);
-    const size = layout.columns.length;
-    const deviances: Float64Array[] = [];
-    const failed: boolean[] = [];
+    const tolerance = Math.max(SINGLE_TOLERANCE, (options.tolerance ?? PATH_TOLERANCE) * 0.9);
+    const deviances = Array.from({ length: count }, () => new Float64Array(lambdas.length));
+    const failed = new Uint8Array(count);
     let optimalityResidual = 0;
     let finished = 0;
-    for (let first = 0; first < layout.folds; first += LANES_SINGLE) {
-      const followers = Array.from({ length: Math.min(LANES_SINGLE, layout.folds - first) }, (_, k): Follower => {
-        const fold = first + k;
-        const sums = weightSums(layout, (other) => other !== fold);
-        const own = options.valuesForFold?.(fold + 1) ?? null;
-        const standardisation = own
-          ? fromTables(problem, layout, sums, (source) => own[source])
-          : ownStandardisation(problem, layout, full, sums);
-        deviances[fold] = new Float64Array(lambdas.length);
-        return {
-          point: pointOf(size),
-          standardisation,
-          leftOut: fold,
-          heldOut: 0,
-          heldOutGradient: new Float64Array(size + 1),
-          place: 0,
-          passes: 0,
-          failed: false,
-        };
-      });
-      follow(this.passes, followers, {
-        guide,
-        full,
-        lambdas,
-        tolerance: Math.max(SINGLE_TOLERANCE, (options.tolerance ?? PATH_TOLERANCE) * 0.9),
-        counted: false,
-        onPass: () => {
-          const places = followers.reduce((sum, { place }) => sum + place, 0);
-          options.onProgress?.((first * lambdas.length + places) / (layout.folds * lambdas.length));
-        },
-        onArrival: (lane, place, residual, heldOut) => {
-          const fold = first + lane;
-          deviances[fold][place] = 2 * heldOut;
-          optimalityResidual = Math.max(optimalityResidual, residual);
-          options.onFoldFit?.(fold + 1, place, {
-            ...this.unscaled(followers[lane].point, followers[lane].standardisation),
-            optimalityResidual: residual,
-          });
-          if (place === lambdas.length - 1) options.onFold?.(++finished, layout.folds);
-        },
-      });
-      followers.forEach((follower, k) => (failed[first + k] = follower.failed));
-    }
+    const valuesFor = (fold: number) => options.valuesForFold?.(fold + 1) ?? null;
+    const arrive = ({ fold, place, deviance, residual, fit }: FoldArrival): void => {
+      deviances[fold][place] = deviance;
+      optimalityResidual = Math.max(optimalityResidual, residual);
+      options.onFoldFit?.(fold + 1, place, { ...fit(), optimalityResidual: residual });
+      if (place === lambdas.length - 1) options.onFold?.(++finished, count);
+    };
+    const fail = (fold: number): void => void (failed[fold] = 1);
+    const own = (first: number, end: number): void => {
+      for (let from = first; from < end; from += LANES_SINGLE) {
+        const to = Math.min(end, from + LANES_SINGLE);
+        this.followBatch(
+          { guide, lambdas, first: from, end: to, tolerance, valuesFor },
+          {
+            onArrival: arrive,
+            onFailure: fail,
+            onPass: (share) => options.onProgress?.((from + share * (to - from)) / count),
+          },
+        );
+      }
+    };
+    const half = Math.ceil(count / 2);
+    const collect = this.delegate({ guide, lambdas, first: half, end: count, tolerance, valuesFor }, options.onFoldFit !== undefined);
+    own(0, collect ? half : count);
+    if (collect && !collect(arrive, fail)) own(half, count);
     const folds = deviances.map((deviance, fold) =>
-      failed[fold] ? null : { fold: fold + 1, weight: layout.foldWeights[fold], deviance: Array.from(deviance) },
+      failed[fold] !== 0 ? null : { fold: fold + 1, weight: layout.foldWeights[fold], deviance: Array.from(deviance) },
     );
     return { folds, optimalityResidual };
+  }
+
+  /**
+   * Offers folds to another thread. Only where curvatures are of all rows does a fold not depend on those it is followed beside, and only then may it be
+   * followed elsewhere.
+   * @returns takes what was found, false when nobody did it; null when nobody was asked
+   */
+  private delegate(
+    folds: FollowedFolds,
+    withFits: boolean,
+  ): ((arrive: (arrival: FoldArrival) => void, fail: (fold: number) => void) => boolean) | null {
+    const { layout, problem, options } = this;
+    const send = options.crew?.delegate;
+    const { first, end, lambdas, guide, tolerance, valuesFor } = folds;
+    if (!send || !options.folds || first >= end || layout.gramUnits.large.units !== layout.gramUnits.small.units) return null;
+    const columns = withFits ? problem.columns.length : 0;
+    const sheet = new FoldSheet(
+      new SharedArrayBuffer(FoldSheet.bytes(end - first, lambdas.length, columns)),
+      lambdas.length,
+      columns,
+    );
+    const values = Array.from({ length: end - first }, (_, k) => valuesFor(first + k));
+    const batch = { problem, folds: options.folds, lambdas, guide, tolerance, values, first, end, withFits };
+    send({ ...batch, sheet: sheet.buffer });
+    return (arrive, fail) => {
+      if (!sheet.collect()) return false;
+      for (let fold = first; fold < end; fold++) {
+        for (let place = 0; place < lambdas.length; place++) {
+          const { deviance, residual, fit } = sheet.read(fold - first, place);
+          if (Number.isNaN(deviance)) {
+            fail(fold);
+            break;
+          }
+          arrive({ fold, place, deviance, residual, fit: () => fit ?? none });
+        }
+      }
+      return true;
+    };
+  }
+
+  /** Follows at most 16 folds along the guide together. */
+  followBatch(folds: FollowedFolds, told: FoldEvents): void {
+    const { layout, problem, full } = this;
+    const { first, end, lambdas, guide, tolerance, valuesFor } = folds;
+    const size = layout.columns.length;
+    const followers = Array.from({ length: end - first }, (_, k): Follower => {
+      const fold = first + k;
+      const sums = weightSums(layout, (other) => other !== fold);
+      const own = valuesFor(fold);
+      const standardisation = own
+        ? fromTables(problem, layout, sums, (source) => own[source])
+        : ownStandardisation(problem, layout, full, sums);
+      return {
+        point: pointOf(size),
+        standardisation,
+        leftOut: fold,
+        heldOut: 0,
+        heldOutGradient: new Float64Array(size + 1),
+        place: 0,
+        passes: 0,
+        failed: false,
+      };
+    });
+    follow(this.passes, followers, {
+      guide,
+      full,
+      lambdas,
+      tolerance,
+      counted: false,
+      onPass: () => {
+        const places = followers.reduce((sum, { place }) => sum + place, 0);
+        told.onPass?.(places / (followers.length * lambdas.length));
+      },
+      onArrival: (lane, place, residual, heldOut) =>
+        told.onArrival({
+          fold: first + lane,
+          place,
+          deviance: 2 * heldOut,
+          residual,
+          fit: () => this.unscaled(followers[lane].point, followers[lane].standardisation),
+        }),
+    });
+    followers.forEach((follower, k) => follower.failed && told.onFailure(first + k, follower.place));
   }
 
   /**

@@ -16,6 +16,9 @@ export class Passes {
   private readonly sums: Float64Array;
   private readonly heldSums: Float64Array;
   private readonly gradient: Float64Array;
+  /** First bin of each coded column, and the number of bins after the last. */
+  private readonly firstBins: Int32Array;
+  private readonly packOf: Int32Array;
 
   constructor(
     readonly layout: Layout,
@@ -29,6 +32,9 @@ export class Passes {
     this.sums = new Float64Array(rows * LANES_SINGLE);
     this.heldSums = new Float64Array(rows);
     this.gradient = new Float64Array(layout.columns.length + 1);
+    const codedColumns = layout.columns.slice(0, layout.coded);
+    this.firstBins = Int32Array.from([...codedColumns.map(({ firstBin }) => firstBin), layout.bins]);
+    this.packOf = Int32Array.from(codedColumns, ({ pack }) => pack);
     crew.join(layout.machine, layout.at);
     this.describe(layout.at.description32, 4);
     this.describe(layout.at.description64, 8);
@@ -111,24 +117,20 @@ export class Passes {
     f.fill(0, at.slopes >> shift, (at.slopes >> shift) + linear * width);
     i32.fill(-1, at.lossVectors >> 2, (at.lossVectors >> 2) + folds);
     const active = new Uint8Array(packs.length);
-    lanes.forEach((lane, l) => {
-      const { point, standardisation, leftOut } = lane;
+    for (let l = 0; l < lanes.length; l++) {
+      const { point, standardisation, leftOut } = lanes[l];
       f[(at.intercepts >> shift) + l] = point.intercept;
       if (leftOut >= 0) i32[(at.lossVectors >> 2) + leftOut] = (l / perVector) | 0;
-      for (let j = 0; j < columns.length; j++) {
-        const t = point.t[j];
-        if (t === 0) continue;
-        const { firstBin, bins: own, pack } = columns[j];
-        if (firstBin < 0) f[(at.slopes >> shift) + (j - coded) * width + l] = t;
-        else {
-          active[pack] = 1;
-          const to = (at.contributions >> 3) + firstBin * width + l;
-          for (let b = 0; b < own; b++) f64[to + b * width] = t * standardisation.values[firstBin + b];
-        }
-      }
-    });
+      this.contribute(point.t, standardisation.values, l, width, active);
+      for (let j = coded; j < columns.length; j++) f[(at.slopes >> shift) + (j - coded) * width + l] = point.t[j];
+    }
+    // Packs take part by fours, so that the kernels always group a lane's sums alike: whom it rides beside never shows in its last bits.
     let used = 0;
-    for (let p = 0; p < packs.length; p++) if (active[p]) i32[(at.etaList >> 2) + used++] = p;
+    for (let four = 0; four < packs.length; four += 4) {
+      const end = Math.min(packs.length, four + 4);
+      if (!active.subarray(four, end).includes(1)) continue;
+      for (let p = four; p < end; p++) i32[(at.etaList >> 2) + used++] = p;
+    }
     i32[d + word.ETA_COUNT] = used;
     for (let p = 0; p < packs.length; p++) i32[(at.gradientList >> 2) + p] = p;
     i32[d + word.GRADIENT_COUNT] = packs.length;
@@ -136,6 +138,20 @@ export class Passes {
     else layout.machine.kernels.spread32(description);
     this.crew.run(double ? 'pass64' : 'pass32', description, layout.chunks);
     this.collect(lanes, width, double);
+  }
+
+  /** What the bins of a lane's coded columns add to its linear predictor; packs with a coordinate are marked. */
+  private contribute(t: Float64Array, values: Float64Array, l: number, width: number, active: Uint8Array): void {
+    const { f64, firstBins, packOf } = this;
+    const { at, coded } = this.layout;
+    const first = (at.contributions >> 3) + l;
+    for (let j = 0; j < coded; j++) {
+      const own = t[j];
+      if (own === 0) continue;
+      active[packOf[j]] = 1;
+      const end = firstBins[j + 1];
+      for (let b = firstBins[j], to = first + b * width; b < end; b++, to += width) f64[to] = own * values[b];
+    }
   }
 
   /** Sums chunks in their order and turns sums by bin into gradients; the chunks of a lane's left-out fold are taken out of its sums again. */
@@ -188,21 +204,21 @@ export class Passes {
     weight: number,
     gradient: Float64Array,
   ): void {
+    const { firstBins } = this;
     const { bins, columns, linear, coded } = this.layout;
     const { values, used } = s;
     const at = (k: number): number => sums[k * width + l] - (less ? less[k] : 0);
     gradient[0] = at(bins + linear) / weight;
-    for (let j = 0; j < columns.length; j++) {
+    for (let j = 0; j < coded; j++) {
       let sum = 0;
       if (used[j] !== 0) {
-        const { firstBin, bins: own } = columns[j];
-        const end = firstBin + own;
-        if (firstBin < 0) sum = at(bins + j - coded);
-        else if (less) for (let b = firstBin; b < end; b++) sum += values[b] * (sums[b * width + l] - less[b]);
-        else for (let b = firstBin; b < end; b++) sum += values[b] * sums[b * width + l];
+        const end = firstBins[j + 1];
+        if (less) for (let b = firstBins[j]; b < end; b++) sum += values[b] * (sums[b * width + l] - less[b]);
+        else for (let b = firstBins[j]; b < end; b++) sum += values[b] * sums[b * width + l];
       }
       gradient[j + 1] = sum / weight;
     }
+    for (let j = coded; j < columns.length; j++) gradient[j + 1] = used[j] !== 0 ? at(bins + j - coded) / weight : 0;
   }
 
   /** Sum of w z^2 of a linear column over the rows as a lane counts them. */

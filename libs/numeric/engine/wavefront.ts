@@ -40,9 +40,11 @@ interface Rider extends Lane {
   stalled: number;
 }
 
-/** Lambdas between two curvatures. */
+/** Lambdas between two curvatures of a sample of the rows. */
 const REFRESH = 4;
-/** Steps whose exact gradients correct the curvature. */
+/** Lambdas between two curvatures of all rows, which nothing has to correct: making their factors anew costs more than the passes that it spares. */
+const REFRESH_EXACT = 6;
+/** Steps whose exact gradients correct the curvature of a sample. */
 const SECANTS = 8;
 const MOST_PASSES = 60;
 const MOST_STALLED = 8;
@@ -74,7 +76,10 @@ export function solvePath(passes: Passes, start: Point | null, targets: readonly
   let reported = 0;
   let curvature: Curvature | null = null;
   let gram: Float64Array | null = null;
-  const secants = new Secants(size, SECANTS);
+  const { large, small } = passes.layout.gramUnits;
+  const isExact = large.units === small.units;
+  const secants = isExact ? null : new Secants(size, SECANTS);
+  const places = isExact ? REFRESH_EXACT : REFRESH;
   let curvatureAt = -Infinity;
   let latest: Point | null = start;
   /** The last of the lanes, as the last pass found it: the lane itself has moved on since, and its gradient with the old point. */
@@ -82,12 +87,12 @@ export function solvePath(passes: Passes, start: Point | null, targets: readonly
   const refresh = (point: Point, place: number): void => {
     curvatureAt = place;
     [gram] = passes.gram(point, s, 'small', false);
-    secants.applyTo(gram);
+    secants?.applyTo(gram);
     curvature = curvatureOf(gram, size);
   };
   /** The curvature near a place: taken anew only once the lanes have moved on, in the middle of those that have a point yet. */
   const near = (place: number): Curvature => {
-    if (!curvature || place >= curvatureAt + REFRESH) {
+    if (!curvature || place >= curvatureAt + places) {
       const middle = riders.filter(({ passes: made }) => made > 0).at(Math.min(2, riders.length - 1));
       refresh(middle?.point ?? latest ?? riders[0].point, place);
     }
@@ -153,9 +158,11 @@ export function solvePath(passes: Passes, start: Point | null, targets: readonly
       } else kept.push(rider);
       points.push(point);
     }
-    let told = false;
-    for (const { left, before, point } of riders) if (left && gram && secants.learn(gram, before, point)) told = true;
-    if (told && gram) curvature = curvatureOf(gram, size);
+    if (secants && gram) {
+      let told = false;
+      for (const { left, before, point } of riders) if (left && secants.learn(gram, before, point)) told = true;
+      if (told) curvature = curvatureOf(gram, size);
+    }
     // Poor progress says that the curvature no longer serves; it is taken anew at the lane that is furthest behind.
     if (contraction > 0.5 && kept.length > 0) refresh(kept[0].point, kept[0].place);
     const bases = points.map((point) => {

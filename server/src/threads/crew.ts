@@ -3,7 +3,7 @@ import { Worker } from 'node:worker_threads';
 import { Alone, Team, type Crew } from '@tallystone/numeric/engine/crew';
 import { besideThis } from './beside-this';
 
-/** Cells (rows times columns) from which on a helping thread gains more than it costs to wake. */
+/** Cells (rows times columns) from which on a helping thread gains more in every pass than it costs to wake; below, it is given folds as a whole. */
 const WORTH_CELLS = 300_000;
 
 let helper: Worker | null = null;
@@ -13,7 +13,8 @@ let helper: Worker | null = null;
  * one takes longer than most fits. The results are the same either way.
  */
 export function crewFor(cells: number): Crew {
-  if (cells < WORTH_CELLS || availableParallelism() < 2) return new Alone();
+  if (availableParallelism() < 2) return new Alone();
+  if (cells < WORTH_CELLS) return new Alone((batch) => helperThread().postMessage(batch));
   return new Team([(order) => helperThread().postMessage(order)]);
 }
 
