@@ -1,5 +1,13 @@
 import { describe, expect, it } from 'vitest';
-import { auc, brier, crossValidate, fitPath, probabilitiesOfBad, type FitProblem } from '@tallystone/numeric';
+import {
+  auc,
+  brier,
+  crossValidate,
+  fastCrossValidation,
+  fitPath,
+  probabilitiesOfBad,
+  type FitProblem,
+} from '@tallystone/numeric';
 import { tableOf } from './penalised-fits';
 import { expectAllRead, expectNear, expected } from './reference-files';
 
@@ -66,6 +74,14 @@ describe('cross-validation against cv.glmnet 4.1-6 and a manual fold loop', () =
         },
       });
       expect(result.converged).toBe(true);
+      const fast = fastCrossValidation(problem, folds, reference.lambda, { engineFrom: 0 });
+      expect([fast.solver, fast.reason, fast.converged]).toEqual(['engine', null, true]);
+      expect([fast.minimum, fast.oneStandardError]).toEqual([result.minimum, result.oneStandardError]);
+      fast.folds.forEach((fold, k) =>
+        reference.lambda.forEach((lambda, place) =>
+          expectNear(fold.deviance[place], result.folds[k].deviance[place], 1e-6, `fold ${k + 1} at ${lambda}`),
+        ),
+      );
       expect(result.optimalityResidual).toBeLessThanOrEqual(1e-6);
       expect(result.minimum + 1).toBe(reference.index_min_1based);
       expect(result.oneStandardError + 1).toBe(reference.index_1se_1based);
@@ -78,8 +94,10 @@ describe('cross-validation against cv.glmnet 4.1-6 and a manual fold loop', () =
         expectNear(fold.deviance[result.oneStandardError], reference.fold_deviance_at_1se[k], 1e-6, `fold ${k + 1}`);
       });
       reference.lambda.forEach((lambda, k) => {
-        expectNear(result.mean[k], reference.cvm_deviance[k], 1e-6, `mean at ${lambda}`);
-        expectNear(result.standardError[k], reference.cvsd_deviance[k], 1e-6, `standard error at ${lambda}`);
+        for (const { mean, standardError } of [result, fast]) {
+          expectNear(mean[k], reference.cvm_deviance[k], 1e-6, `mean at ${lambda}`);
+          expectNear(standardError[k], reference.cvsd_deviance[k], 1e-6, `standard error at ${lambda}`);
+        }
         expectNear(brier(probabilitiesOfBad(outOfFold[k]), outcome, weights), reference.cvm_brier[k], 1e-6, `Brier at ${lambda}`);
       });
       const held = result.folds.map(({ fold }) => Array.from(folds.keys()).filter((i) => folds[i] === fold));

@@ -94,9 +94,8 @@ export class CurvaturesAlong {
     const known = this.kept.get(place);
     if (known) return known;
     const { passes, standardisation, pointAt } = this;
-    const { large, small } = passes.layout.gramUnits;
     let grams: Float64Array[];
-    if (large.units === small.units) grams = passes.gram(pointAt(place), standardisation);
+    if (passes.layout.isWhole) grams = passes.gram(pointAt(place), standardisation);
     else {
       if (!this.anchor || Math.abs(place - this.anchor.place) > ANCHORED) {
         const point = pointAt(place + ANCHORED);

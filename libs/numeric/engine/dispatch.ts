@@ -29,12 +29,12 @@ export interface SolvedBy {
 export interface EngineChoice {
   /** Who works on a problem of so many cells (rows times columns); absent = the caller alone. */
   readonly crewFor?: (cells: number) => Crew;
-  /** Rows from which on the engine is used; default 5,000. */
+  /** Rows from which on the engine is used; default 500. */
   readonly engineFrom?: number;
 }
 
-/** Below, the oracle is as fast and its curvature is each fold's own. */
-export const ENGINE_ROWS = 5000;
+/** Below, the oracle takes no noticeable time. */
+export const ENGINE_ROWS = 500;
 
 /** What singles can prove of a fold or a resample. */
 const SINGLES_REACH = 1e-6;

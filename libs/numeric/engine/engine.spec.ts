@@ -230,7 +230,7 @@ describe('what the engine leaves to the oracle, it says', () => {
   const lasso = { mixing: 1, standardize: true };
   it('few rows', () => {
     const result = fastPath(randomProblem(1, 300, 3, lasso), automatic);
-    expect([result.solver, result.reason]).toEqual(['oracle', 'fewer than 5000 rows']);
+    expect([result.solver, result.reason]).toEqual(['oracle', 'fewer than 500 rows']);
   });
   it('goods and bads that an unpenalised column separates', () => {
     const problem = problemWith({ ...lasso, multipliers: Float64Array.of(0, 1, 1, 1, 1, 1, 1, 1) });

@@ -22,6 +22,12 @@ export const PATH_TOLERANCE = 1e-6;
 /** What singles are asked for: their rounding adds some 1e-7 to the residual. */
 const SINGLE_TOLERANCE = 9e-7;
 
+/**
+ * Share of the tolerance that folds are asked for. Of few rows, what a fold that is left out misses weighs more, and their sums are exact enough to ask for less.
+ */
+const FOLD_SHARE = 0.9;
+const FOLD_SHARE_OF_FEW = 0.3;
+
 /** Where doubles prove a point, singles stop that many times above what is asked for: the model's next step, which needs no pass, takes a point the rest of the way. */
 const SINGLES_STOP = 5;
 
@@ -383,7 +389,8 @@ export class Engine {
     const { layout } = this;
     const count = layout.folds;
     const guide = this.guideTo(lambdas);
-    const tolerance = Math.max(SINGLE_TOLERANCE, (options.tolerance ?? PATH_TOLERANCE) * 0.9);
+    const share = layout.isWhole ? FOLD_SHARE_OF_FEW : FOLD_SHARE;
+    const tolerance = share * Math.max(PATH_TOLERANCE, options.tolerance ?? PATH_TOLERANCE);
     const deviances = Array.from({ length: count }, () => new Float64Array(lambdas.length));
     const failed = new Uint8Array(count);
     let optimalityResidual = 0;
@@ -410,7 +417,10 @@ export class Engine {
       }
     };
     const half = Math.ceil(count / 2);
-    const collect = this.delegate({ guide, lambdas, first: half, end: count, tolerance, valuesFor }, options.onFoldFit !== undefined);
+    const collect = this.delegate(
+      { guide, lambdas, first: half, end: count, tolerance, valuesFor },
+      options.onFoldFit !== undefined,
+    );
     own(0, collect ? half : count);
     if (collect && !collect(arrive, fail)) own(half, count);
     const folds = deviances.map((deviance, fold) =>
@@ -431,7 +441,7 @@ export class Engine {
     const { layout, problem, options } = this;
     const send = options.crew?.delegate;
     const { first, end, lambdas, guide, tolerance, valuesFor } = folds;
-    if (!send || !options.folds || first >= end || layout.gramUnits.large.units !== layout.gramUnits.small.units) return null;
+    if (!send || !options.folds || first >= end || !layout.isWhole) return null;
     const columns = withFits ? problem.columns.length : 0;
     const sheet = new FoldSheet(
       new SharedArrayBuffer(FoldSheet.bytes(end - first, lambdas.length, columns)),

@@ -105,8 +105,7 @@ export class FoldSheet {
   ): { deviance: number; residual: number; fit: { intercept: number; coefficients: Float64Array } | null } {
     const { numbers, columns } = this;
     const from = this.at(fold, place);
-    const fit =
-      columns > 0 ? { intercept: numbers[from + 2], coefficients: numbers.slice(from + 3, from + 3 + columns) } : null;
+    const fit = columns > 0 ? { intercept: numbers[from + 2], coefficients: numbers.slice(from + 3, from + 3 + columns) } : null;
     return { deviance: numbers[from], residual: numbers[from + 1], fit };
   }
 }

@@ -96,6 +96,8 @@ export interface Layout {
   readonly chunksOfFold: readonly { readonly start: number; readonly end: number }[];
   /** Units of the large sample, and of the small one; the same where there are few rows. */
   readonly gramUnits: Readonly<Record<Sample, GramUnits>>;
+  /** Curvatures are of all rows, because there are few. */
+  readonly isWhole: boolean;
   readonly gramSize: number;
   readonly workers: number;
   readonly at: Places;
@@ -287,6 +289,7 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
       large: { first: 0, units: large },
       small: small.length > 0 ? { first: large.length, units: small } : { first: 0, units: large },
     },
+    isWhole: small.length === 0,
     gramSize,
     workers,
     at,

@@ -38,14 +38,23 @@ interface Rider extends Lane {
   passes: number;
   residual: number;
   stalled: number;
+  /** The last step gained little. */
+  poor: boolean;
+  /** Violation of the point of another lane that it last stepped from. */
+  lent: number;
+  /** Taken at the lane's own point, once that of its neighbours had served it badly. */
+  curvature: Curvature | null;
 }
 
 /** Lambdas between two curvatures of a sample of the rows. */
 const REFRESH = 4;
 /** Lambdas between two curvatures of all rows, which nothing has to correct: making their factors anew costs more than the passes that it spares. */
-const REFRESH_EXACT = 6;
+const REFRESH_WHOLE = 6;
 /** Steps whose exact gradients correct the curvature of a sample. */
 const SECANTS = 8;
+/** A step that leaves more than this share of the residual gained little; one that leaves more than that gained nothing. */
+const POOR = 0.5;
+const STALLED = 0.9;
 const MOST_PASSES = 60;
 const MOST_STALLED = 8;
 
@@ -76,10 +85,9 @@ export function solvePath(passes: Passes, start: Point | null, targets: readonly
   let reported = 0;
   let curvature: Curvature | null = null;
   let gram: Float64Array | null = null;
-  const { large, small } = passes.layout.gramUnits;
-  const isExact = large.units === small.units;
-  const secants = isExact ? null : new Secants(size, SECANTS);
-  const places = isExact ? REFRESH_EXACT : REFRESH;
+  const { isWhole } = passes.layout;
+  const secants = isWhole ? null : new Secants(size, SECANTS);
+  const places = isWhole ? REFRESH_WHOLE : REFRESH;
   let curvatureAt = -Infinity;
   let latest: Point | null = start;
   /** The last of the lanes, as the last pass found it: the lane itself has moved on since, and its gradient with the old point. */
@@ -116,6 +124,9 @@ export function solvePath(passes: Passes, start: Point | null, targets: readonly
         passes: 0,
         residual: Infinity,
         stalled: 0,
+        poor: false,
+        lent: Infinity,
+        curvature: null,
       };
       if (target.from) copyPoint(target.from, rider.point);
       else {
@@ -131,16 +142,13 @@ export function solvePath(passes: Passes, start: Point | null, targets: readonly
     passes.run(riders, precision);
     const points: (Point | null)[] = [latest];
     const kept: Rider[] = [];
-    let contraction = 0;
     for (const rider of riders) {
       const { target, point } = rider;
       rider.passes++;
       const was = rider.residual;
       rider.residual = residualAt(point, s, target.lambda);
-      if (rider.stepped && rider.residual > 0.5 * was) {
-        rider.stalled++;
-        contraction = Math.max(contraction, rider.residual / was);
-      }
+      rider.poor = rider.stepped && rider.residual > POOR * was;
+      if (rider.stepped && rider.residual > STALLED * was) rider.stalled++;
       const finished = rider.residual <= target.tolerance;
       const failed = !Number.isFinite(rider.residual) || rider.passes >= MOST_PASSES || rider.stalled >= MOST_STALLED;
       if (finished || failed) {
@@ -163,8 +171,13 @@ export function solvePath(passes: Passes, start: Point | null, targets: readonly
       for (const { left, before, point } of riders) if (left && secants.learn(gram, before, point)) told = true;
       if (told) curvature = curvatureOf(gram, size);
     }
-    // Poor progress says that the curvature no longer serves; it is taken anew at the lane that is furthest behind.
-    if (contraction > 0.5 && kept.length > 0) refresh(kept[0].point, kept[0].place);
+    // Poor progress says that the curvature does not serve a lane. That of the lane furthest behind is taken anew for all; another one, whose lambda may lie
+    // far from it, gets one of its own.
+    for (const rider of kept) {
+      if (!rider.poor) continue;
+      if (rider === kept[0]) refresh(rider.point, rider.place);
+      else rider.curvature = curvatureOf(passes.gram(rider.point, s, 'small', false)[0], size);
+    }
     const bases = points.map((point) => {
       if (!point) return null;
       const copy = pointOf(size);
@@ -173,7 +186,7 @@ export function solvePath(passes: Passes, start: Point | null, targets: readonly
     });
     furthest = bases.at(-1) ?? null;
     for (const rider of kept) {
-      advance(rider, riders.indexOf(rider), bases, s, near(kept[0].place));
+      advance(rider, riders.indexOf(rider), bases, s, rider.curvature ?? near(kept[0].place));
     }
     const done = riders.filter((rider) => !kept.includes(rider)).at(-1);
     if (done && (kept.length === 0 || done.place < kept[0].place)) latest = done.point;
@@ -207,12 +220,14 @@ function advance(rider: Rider, index: number, bases: readonly (Point | null)[], 
     const other = bases[k];
     if (!other) continue;
     const violation = residualAt(other, s, target.lambda);
-    if (violation < 0.7 * least) {
+    // A point that is no better than one which has led to where the lane is would lead there again.
+    if (violation < 0.7 * Math.min(least, rider.lent)) {
       base = other;
       least = violation;
     }
   }
   rider.stepped = base === own;
+  if (!rider.stepped) rider.lent = least;
   copyPoint(base, before);
   rider.left = true;
   if (!rider.stepped) rider.residual = Infinity;
