@@ -41,11 +41,10 @@ export async function loadScorecard(sequelize: Sequelize, fit: FoundFit, tx: Tra
   if (fit.state !== 'ready' || !choice) {
     throw conflict('no-penalty-chosen', 'No penalty of this fit is chosen yet. Choose one on its path first.');
   }
-  const [row, saved, fitted] = await Promise.all([
-    Fit.findByPk(fit.id, { attributes: ['specification'], raw: true, transaction: tx }),
-    ScorecardRow.findByPk(fit.id, { raw: true, transaction: tx }),
-    FittedPath.findByPk(fit.id, { attributes: ['path'], raw: true, transaction: tx }),
-  ]);
+  // One after the other: the connection of a transaction carries one query at a time.
+  const row = await Fit.findByPk(fit.id, { attributes: ['specification'], raw: true, transaction: tx });
+  const saved = await ScorecardRow.findByPk(fit.id, { raw: true, transaction: tx });
+  const fitted = await FittedPath.findByPk(fit.id, { attributes: ['path'], raw: true, transaction: tx });
   if (!row || !fitted) throw new Error(`Fit ${fit.id} is ready without a path`);
   const { path } = fitted;
   const { labels } = await labelsOf(sequelize, fit.definitionId, tx);
