@@ -40,7 +40,7 @@ export class DuplicateRows {
   }
 
   count(): number {
-    const sorted = this.keys.slice(0, this.rows).sort();
+    const sorted = this.keys.subarray(0, this.rows).sort();
     let equal = 0;
     for (let place = 1; place < sorted.length; place++) if (sorted[place] === sorted[place - 1]) equal++;
     return equal;

@@ -1,8 +1,13 @@
 import { createHmac } from 'node:crypto';
 
+/** Characters of a hash as it is kept: 128 bits in base64url. */
+export const hashBytes = 22;
+
 const blockBytes = 64;
 /** With the key's block before it, a text of so many bytes fills one block together with its length. */
 const mostInOneBlock = 55;
+
+const alphabet = Buffer.from('ABCDEFGHIJKLMNOPQRSTUVWXYZabcdefghijklmnopqrstuvwxyz0123456789-_', 'latin1');
 
 // FIPS 180-4, 4.2.2 and 5.3.3: the first 32 bits of the fractional parts of cube roots, and of square roots, of the first primes.
 const primes = firstPrimes(64);
@@ -19,8 +24,7 @@ export class KeyedHash {
   private readonly outer: Int32Array;
   private readonly state = new Int32Array(8);
   private readonly schedule = new Int32Array(64);
-  private readonly block = Buffer.alloc(blockBytes);
-  private readonly digest = Buffer.alloc(32);
+  private readonly block = new Uint8Array(blockBytes);
 
   constructor(private readonly key: Buffer) {
     if (key.length > blockBytes) throw new Error('A key of more than 64 bytes would have to be hashed first');
@@ -35,29 +39,54 @@ export class KeyedHash {
     this.outer = padded(0x5c);
   }
 
-  /** The first 128 bits in base64url. */
+  /** The first 128 bits in base64url (RFC 4648, section 5). */
   of(text: string): string {
-    const { block, state, digest } = this;
-    const length = text.length > mostInOneBlock ? text.length : Buffer.byteLength(text, 'utf8');
+    const bytes = Buffer.from(text, 'utf8');
+    const hash = Buffer.alloc(hashBytes);
+    this.write(bytes, 0, bytes.length, hash, 0);
+    return hash.toString('latin1');
+  }
+
+  /** The same of the UTF-8 from `start` to `end`, written as ASCII into `into` from `at` on. */
+  write(bytes: Uint8Array, start: number, end: number, into: Uint8Array, at: number): void {
+    const { block, state } = this;
+    const length = end - start;
     if (length > mostInOneBlock) {
-      return createHmac('sha256', this.key).update(text, 'utf8').digest().subarray(0, 16).toString('base64url');
+      const digest = createHmac('sha256', this.key).update(bytes.subarray(start, end)).digest();
+      into.set(Buffer.from(digest.subarray(0, 16).toString('base64url'), 'latin1'), at);
+      return;
     }
+    for (let k = 0; k < length; k++) block[k] = bytes[start + k];
     block.fill(0, length);
-    block.write(text, 0, 'utf8');
     state.set(this.inner);
     this.finish(length);
+    for (let k = 0; k < 8; k++) {
+      const word = state[k];
+      block[k * 4] = word >>> 24;
+      block[k * 4 + 1] = word >>> 16;
+      block[k * 4 + 2] = word >>> 8;
+      block[k * 4 + 3] = word;
+    }
     block.fill(0, 32);
-    for (let k = 0; k < 8; k++) block.writeInt32BE(state[k], k * 4);
     state.set(this.outer);
     this.finish(32);
-    for (let k = 0; k < 4; k++) digest.writeInt32BE(state[k], k * 4);
-    return digest.toString('base64url', 0, 16);
+    // Six bits a character, the first at the top of each word; the last character holds two bits.
+    for (let k = 0, bit = 0; k < hashBytes; k++, bit += 6) {
+      const word = bit >>> 5;
+      const shift = 26 - (bit & 31);
+      const next = word < 3 ? state[word + 1] : 0;
+      const six = shift >= 0 ? state[word] >>> shift : (state[word] << -shift) | (next >>> (32 + shift));
+      into[at + k] = alphabet[six & 63];
+    }
   }
 
   /** Works through the last block, of which `length` bytes are the message's; the block of the key went before it. */
   private finish(length: number): void {
     this.block[length] = 0x80;
-    this.block.writeUInt32BE((blockBytes + length) * 8, 60);
+    // At most 119 bytes, whose bits two bytes count.
+    const bits = (blockBytes + length) * 8;
+    this.block[62] = bits >>> 8;
+    this.block[63] = bits;
     this.compress(this.state);
   }
 

@@ -1,6 +1,6 @@
-import { constants, deflateRawSync } from 'node:zlib';
 import { type CodedColumn, leastNumber, textBase } from '../reading/plain/column-coder';
 import { type NumberStyle, spell } from '../reading/plain/number-style';
+import { deflateFrom, saysNothing } from './deflateFrom';
 
 /**
  * Form 2 of a segment: what the fast reader codes, stored without making strings of it. Numbers whose spelling follows from their value
@@ -34,13 +34,20 @@ const rowNumbers = 255;
 /** Numbers of a segment are kept in a table up to this many different ones. */
 const mostInTable = 256;
 
+/** Stored as it is, without loss, before planes that are. */
+const mostHeaderStored = 512;
+
 const byDistance = 0;
 const byTable = 1;
 
+/** Used again from segment to segment, because a new one for each would keep the garbage collector busy. */
+let codesOfRows = new Uint32Array(0);
+
+/** @returns bytes in memory of their own */
 export function encodePacked(column: PackedColumn): Buffer {
   const { rows, cells, texts } = column;
   const range = rangeOf(cells, rows);
-  const header = new Writer(64 + texts.size * 5 + (texts.size > 0 ? texts.places[texts.size] : 0) + mostInTable * 5);
+  const header = new Writer(64 + texts.size * 5 + (texts.size > 0 ? texts.places[texts.size] : 0) + mostInTable * 5 + rows * 4);
   header.byte(packedForm);
   const style = range === null ? null : column.style;
   header.byte(style?.least ?? noNumbers);
@@ -54,37 +61,40 @@ export function encodePacked(column: PackedColumn): Buffer {
     header.varint(to - from);
     header.raw(texts.bytes, from, to);
   }
-  const codes = new Uint32Array(rows);
+  if (codesOfRows.length < rows) codesOfRows = new Uint32Array(rows);
+  const codes = codesOfRows.subarray(0, rows);
   let count = texts.size;
   if (range === null) for (let row = 0; row < rows; row++) codes[row] = cells[row] - textBase;
   else {
-    const table = tableOf(cells, rows, mostInTable - texts.size);
+    const table = tableOf(cells, rows, range, mostInTable - texts.size);
     header.byte(table === null ? byDistance : byTable);
     if (table === null) {
-      const step = stepOf(cells, rows, range.smallest);
-      header.zigzag(range.smallest);
+      const { smallest } = range;
+      const step = stepOf(cells, rows, smallest);
+      header.zigzag(smallest);
       header.varint(step);
-      for (let row = 0; row < rows; row++) {
-        const cell = cells[row];
-        codes[row] = cell < leastNumber ? cell - textBase : count + (cell - range.smallest) / step;
-      }
-      count += (range.largest - range.smallest) / step + 1;
-    } else {
-      header.varint(table.length);
-      header.zigzag(table[0]);
-      for (let place = 1; place < table.length; place++) header.varint(table[place] - table[place - 1]);
-      const places = new Map(Array.from(table, (number, place) => [number, count + place]));
-      let last = NaN;
-      let lastCode = 0;
-      for (let row = 0; row < rows; row++) {
-        const cell = cells[row];
-        if (cell !== last) {
-          last = cell;
-          lastCode = cell < leastNumber ? cell - textBase : (places.get(cell) ?? 0);
+      if (step === 1) {
+        for (let row = 0; row < rows; row++) {
+          const cell = cells[row];
+          codes[row] = cell < leastNumber ? cell - textBase : count + cell - smallest;
         }
-        codes[row] = lastCode;
+      } else {
+        for (let row = 0; row < rows; row++) {
+          const cell = cells[row];
+          codes[row] = cell < leastNumber ? cell - textBase : count + (cell - smallest) / step;
+        }
       }
-      count += table.length;
+      count += (range.largest - smallest) / step + 1;
+    } else {
+      const { numbers } = table;
+      header.varint(numbers.length);
+      header.zigzag(numbers[0]);
+      for (let place = 1; place < numbers.length; place++) header.varint(numbers[place] - numbers[place - 1]);
+      for (let row = 0; row < rows; row++) {
+        const cell = cells[row];
+        codes[row] = cell < leastNumber ? cell - textBase : count + table.placeOf(cell);
+      }
+      count += numbers.length;
     }
   }
   return deflate(header, codes, count);
@@ -97,7 +107,7 @@ function deflate(header: Writer, codes: Uint32Array, count: number): Buffer {
   const length = bits === rowNumbers || bits === 0 ? 0 : planes > 0 ? planes * rows : Math.ceil((rows * bits) / 8);
   header.byte(bits);
   const at = header.length;
-  const out = header.room(length);
+  const out = header.bytes;
   if (planes > 0) {
     for (let plane = 0; plane < planes; plane++) {
       const from = at + plane * rows;
@@ -112,9 +122,9 @@ function deflate(header: Writer, codes: Uint32Array, count: number): Buffer {
       out[byte] = packed;
     }
   }
-  const whole = out.subarray(0, at + length);
-  // Runs and frequencies are what there is to gain; a search for longer repetitions takes three times as long and finds little in planes.
-  return deflateRawSync(whole, { level: 1, strategy: constants.Z_RLE, chunkSize: Math.max(64, whole.length + 1024) });
+  let stored = 0;
+  if (at <= mostHeaderStored) for (; stored < planes && saysNothing(out, at + stored * rows, rows); stored++);
+  return deflateFrom(out, stored === 0 ? 0 : at + stored * rows, at + length);
 }
 
 function bitsFor(codes: Uint32Array, count: number): number {
@@ -153,8 +163,39 @@ function stepOf(cells: Int32Array, rows: number, smallest: number): number {
   return Math.max(1, step);
 }
 
-/** The different numbers, ascending, or null where there are more than `most`. */
-function tableOf(cells: Int32Array, rows: number, most: number): Int32Array | null {
+/** The different numbers, ascending, and where each of them is among them. */
+interface NumberTable {
+  readonly numbers: ArrayLike<number>;
+  placeOf(number: number): number;
+}
+
+/** Numbers that lie closer together than this are looked up in place. */
+const inPlaceRange = 1 << 16;
+const placeOfDistance = new Int16Array(inPlaceRange);
+
+/** Null where there are more than `most`. */
+function tableOf(
+  cells: Int32Array,
+  rows: number,
+  { smallest, largest }: { smallest: number; largest: number },
+  most: number,
+): NumberTable | null {
+  if (most <= 0) return null;
+  if (largest - smallest < inPlaceRange) {
+    placeOfDistance.fill(-1, 0, largest - smallest + 1);
+    let different = 0;
+    for (let row = 0; row < rows; row++) {
+      if (cells[row] < leastNumber) continue;
+      const distance = cells[row] - smallest;
+      if (placeOfDistance[distance] === 0) continue;
+      if (++different > most) return null;
+      placeOfDistance[distance] = 0;
+    }
+    const numbers: number[] = [];
+    for (let distance = 0; distance <= largest - smallest; distance++)
+      if (placeOfDistance[distance] === 0) placeOfDistance[distance] = numbers.push(smallest + distance) - 1;
+    return { numbers, placeOf: (number) => placeOfDistance[number - smallest] };
+  }
   const slots = new Int32Array(1024).fill(textBase);
   const found: number[] = [];
   for (let row = 0; row < rows; row++) {
@@ -167,7 +208,9 @@ function tableOf(cells: Int32Array, rows: number, most: number): Int32Array | nu
     slots[slot] = cell;
     found.push(cell);
   }
-  return Int32Array.from(found).sort();
+  const numbers = Int32Array.from(found).sort();
+  const places = new Map(Array.from(numbers, (number, place) => [number, place]));
+  return { numbers, placeOf: (number) => places.get(number) ?? 0 };
 }
 
 /** Texts and codes to be packed, whatever the texts are. */
@@ -194,9 +237,6 @@ export interface UnpackedSegment {
   readonly texts: readonly string[];
 }
 
-/** Used again from segment to segment: what is unpacked does not hold on to it. */
-let unpacking = new Uint32Array(0);
-
 /** @param bytes inflated, of form 2 */
 export function unpack(bytes: Buffer): UnpackedSegment {
   const reader = new Reader(bytes);
@@ -222,44 +262,53 @@ export function unpack(bytes: Buffer): UnpackedSegment {
       step = reader.varint();
     }
   }
-  const bits = reader.byte();
-  if (unpacking.length < rows) unpacking = new Uint32Array(rows);
-  const codes = unpacking.fill(0, 0, rows);
-  const at = reader.at;
-  const planes = bits === rowNumbers ? 0 : bits >= 8 ? bits / 8 : 0;
-  if (bits === rowNumbers) for (let row = 0; row < rows; row++) codes[row] = row;
-  else if (planes > 0) {
-    if (bytes.length < at + planes * rows) throw new Error('A segment is cut short');
-    for (let plane = 0; plane < planes; plane++) {
-      const from = at + plane * rows;
-      const shift = plane * 8;
-      for (let row = 0; row < rows; row++) codes[row] |= bytes[from + row] << shift;
-    }
-  } else if (bits > 0) {
-    if (bytes.length < at + Math.ceil((rows * bits) / 8)) throw new Error('A segment is cut short');
-    const perByte = 8 / bits;
-    const mask = (1 << bits) - 1;
-    for (let row = 0, byte = at; row < rows; byte++) {
-      let packed = bytes[byte];
-      for (let place = 0; place < perByte && row < rows; place++, row++) {
-        codes[row] = packed & mask;
-        packed >>>= bits;
-      }
-    }
-  }
   const cells = new Int32Array(rows);
-  if (table === null) {
-    for (let row = 0; row < rows; row++) {
-      const code = codes[row];
-      cells[row] = code < count ? textBase + code : smallest + (code - count) * step;
+  const bits = reader.byte();
+  const { at } = reader;
+  if (bytes.length < at + (bits === rowNumbers ? 0 : bits >= 8 ? (bits / 8) * rows : Math.ceil((rows * bits) / 8)))
+    throw new Error('A segment is cut short');
+  const cellOf = (code: number): number =>
+    code < count ? textBase + code : table === null ? smallest + (code - count) * step : table[code - count];
+  if (bits === rowNumbers) for (let row = 0; row < rows; row++) cells[row] = cellOf(row);
+  else if (bits <= 8) {
+    const byCode = Int32Array.from({ length: 1 << bits }, (_, code) => cellOf(code));
+    unpackBits(bytes, at, bits, byCode, cells);
+  } else if (bits === 16) {
+    for (let row = 0, low = at, high = at + rows; row < rows; row++, low++, high++) {
+      const code = bytes[low] | (bytes[high] << 8);
+      cells[row] = code < count ? textBase + code : table === null ? smallest + (code - count) * step : table[code - count];
     }
   } else {
-    for (let row = 0; row < rows; row++) {
-      const code = codes[row];
-      cells[row] = code < count ? textBase + code : table[code - count];
+    const last = bits === 32 ? at + 3 * rows : -1;
+    for (let row = 0, low = at, middle = at + rows, high = at + 2 * rows; row < rows; row++, low++, middle++, high++) {
+      const three = bytes[low] | (bytes[middle] << 8) | (bytes[high] << 16);
+      const code = last < 0 ? three : (three | (bytes[last + row] << 24)) >>> 0;
+      cells[row] = code < count ? textBase + code : smallest + (code - count) * step;
     }
   }
   return { rows, cells, style, texts };
+}
+
+/** Codes of one byte or a part of one, low bits first. */
+function unpackBits(bytes: Uint8Array, from: number, bits: number, byCode: Int32Array, cells: Int32Array): void {
+  const rows = cells.length;
+  if (bits === 0) {
+    cells.fill(byCode[0]);
+    return;
+  }
+  if (bits === 8) {
+    for (let row = 0; row < rows; row++) cells[row] = byCode[bytes[from + row]];
+    return;
+  }
+  const perByte = 8 / bits;
+  const mask = (1 << bits) - 1;
+  for (let row = 0, byte = from; row < rows; byte++) {
+    let packed = bytes[byte];
+    for (let place = 0; place < perByte && row < rows; place++, row++) {
+      cells[row] = byCode[packed & mask];
+      packed >>>= bits;
+    }
+  }
 }
 
 /** The texts of a column that has been coded and not stored yet. */
@@ -286,11 +335,17 @@ export function textsOfUnpacked({ rows, cells, style, texts }: UnpackedSegment):
   return { codes, texts: [...(style === null ? [] : numbers.map((number) => spell(number, style))), ...texts] };
 }
 
+/** What one segment is written to before it is deflated: used again, like `codesOfRows`. */
+let written = new Uint8Array(0);
+const mostKept = 1 << 23;
+
 class Writer {
   length = 0;
-  private bytes: Uint8Array;
+  readonly bytes: Uint8Array<ArrayBuffer>;
+  /** @param size at least as many bytes as will be written */
   constructor(size: number) {
-    this.bytes = new Uint8Array(size);
+    if (written.length < size && size <= mostKept) written = new Uint8Array(size);
+    this.bytes = size <= mostKept ? written : new Uint8Array(size);
   }
   byte(value: number): void {
     this.bytes[this.length++] = value;
@@ -307,14 +362,10 @@ class Writer {
     this.varint(value < 0 ? -value * 2 - 1 : value * 2);
   }
   raw(source: Uint8Array, from: number, to: number): void {
-    this.bytes.set(source.subarray(from, to), this.length);
-    this.length += to - from;
-  }
-  /** The bytes so far with room behind them. */
-  room(length: number): Uint8Array {
-    const longer = new Uint8Array(this.length + length);
-    longer.set(this.bytes.subarray(0, this.length));
-    return longer;
+    const { bytes } = this;
+    let at = this.length;
+    for (let place = from; place < to; place++) bytes[at++] = source[place];
+    this.length = at;
   }
 }
 

@@ -37,8 +37,8 @@ export async function openChunk(key: Buffer, fileId: string, sequence: number, c
   const opened = decipher.update(content.subarray(nonceBytes + tagBytes));
   // GCM leaves nothing for the end; this checks the tag.
   decipher.final();
-  // In one piece: many small ones would have to be copied together.
-  return expand(opened, { chunkSize: chunkBytes });
+  // In one piece, with a little room so that its end is found in it: many small ones would have to be copied together.
+  return expand(opened, { chunkSize: chunkBytes + 1024 });
 }
 
 /** Appends one chunk; the caller moves the file's offset in the same transaction. */

@@ -1,16 +1,17 @@
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
 import { KeyedHash } from '../profiling/keyed-hash';
 import type { Personal } from '../profiling/personal';
+import { hashColumn } from '../profiling/hash-column';
 import { personalInSegment } from '../profiling/personal-in-segment';
-import type { CodedColumn } from '../reading/plain/column-coder';
 import { NotPlain } from '../reading/plain/field-index';
 import type { NumberStyle } from '../reading/plain/number-style';
 import { SegmentCoder } from '../reading/plain/segment-coder';
-import { type PackedColumn, encodePacked, packTexts, textsOfCoded } from '../storage/packedSegment';
-import type { Task } from './task';
+import { encodePacked } from '../storage/packedSegment';
+import type { Task, TaskControl } from './task';
 
 export interface CodePayload {
-  readonly pieces: readonly Uint8Array<ArrayBuffer>[];
+  /** Over shared memory; may be rewritten. */
+  readonly bytes: Uint8Array;
   readonly rows: number;
   readonly header: readonly string[];
   readonly choices: Pick<ReadingChoices, 'delimiter' | 'trim' | 'decimal' | 'missing'>;
@@ -63,10 +64,7 @@ export const codeSegment: Task<CodePayload, CodeAnswer> = (payload, control) => 
   dropping.unref();
   try {
     coder.begin(payload.styles, payload.personal?.map((one) => one !== null) ?? []);
-    for (const piece of payload.pieces) {
-      if (control.cancelled()) throw new Error('cancelled');
-      coder.add(piece);
-    }
+    coder.add(payload.bytes);
     if (coder.rows !== payload.rows) return { notPlain: 'records end elsewhere than they seemed to' };
   } catch (thrown) {
     if (thrown instanceof NotPlain) return { notPlain: thrown.message };
@@ -78,17 +76,28 @@ export const codeSegment: Task<CodePayload, CodeAnswer> = (payload, control) => 
   const key = new KeyedHash(Buffer.from(payload.key));
   const contents = coder.columns.map((column, position) => {
     if (control.cancelled()) throw new Error('cancelled');
-    // Copied: what deflate gives is a view on a larger buffer.
-    const content = new Uint8Array(encodePacked(personal[position] === null ? column : hashed(column, key, missing)));
-    control.transfer(content.buffer);
-    return content;
+    return encodePacked(personal[position] === null ? column : hashColumn(column, key, missing));
   });
   const keys = coder.keys.slice(0, coder.rows);
   control.transfer(keys.buffer);
-  return { notPlain: null, rows: coder.rows, contents, keys, styles: coder.columns.map(({ style }) => style), personal };
+  return {
+    notPlain: null,
+    rows: coder.rows,
+    contents: together(contents, control),
+    keys,
+    styles: coder.columns.map(({ style }) => style),
+    personal,
+  };
 };
 
-function hashed(column: CodedColumn, key: KeyedHash, missing: ReadonlySet<string>): PackedColumn {
-  const { codes, texts } = textsOfCoded(column);
-  return packTexts({ codes, texts: texts.map((text) => (missing.has(text) ? text : key.of(text))) });
+/** Handed over as one buffer: what deflate gives are views on larger ones. */
+function together(contents: readonly Uint8Array[], control: TaskControl): Uint8Array[] {
+  const whole = new Uint8Array(contents.reduce((sum, { length }) => sum + length, 0));
+  control.transfer(whole.buffer);
+  let at = 0;
+  return contents.map((content) => {
+    whole.set(content, at);
+    at += content.length;
+    return whole.subarray(at - content.length, at);
+  });
 }

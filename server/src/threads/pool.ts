@@ -43,6 +43,9 @@ interface Thread {
 /** A task that has not stopped this long after it was cancelled is ended with its thread: work stops within 5 seconds, whatever it does. */
 const patience = 3000;
 
+/** Of the process's own flags those that leave a CPU profile: threads leave theirs beside it. */
+const profiling = process.execArgv.filter((flag) => flag.startsWith('--cpu-prof'));
+
 /** A pool of worker threads that live on between tasks, because a thread takes a quarter of a second to start. */
 export class ThreadPool {
   private readonly threads = new Set<Thread>();
@@ -94,7 +97,10 @@ export class ThreadPool {
   }
 
   private start(): Thread {
-    const worker = new Worker(besideThis('entry'), { resourceLimits: { maxOldGenerationSizeMb: this.memoryMb }, execArgv: [] });
+    const worker = new Worker(besideThis('entry'), {
+      resourceLimits: { maxOldGenerationSizeMb: this.memoryMb },
+      execArgv: profiling,
+    });
     const thread: Thread = { worker, current: null };
     this.threads.add(thread);
     worker.on('message', (reply: TaskReply) => this.hear(thread, reply));

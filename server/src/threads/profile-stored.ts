@@ -25,17 +25,18 @@ export interface ProfilePayload {
 /** What the quality table says of one stored column, leakage included. */
 export const profileStored: Task<ProfilePayload, ColumnProfile> = (payload) => {
   const { name, position, contents, choices, personal, outcome } = payload;
-  const segments = contents.map(inflateSegment);
-  if (segments.every((bytes) => bytes[0] === packedForm)) {
-    const unpacked = segments.map(unpack);
+  const segments = contents.map((content) => {
+    const bytes = inflateSegment(content);
+    return bytes[0] === packedForm ? unpack(bytes) : decodeTexts(bytes);
+  });
+  const unpacked = segments.filter((segment) => 'cells' in segment);
+  if (unpacked.length === segments.length) {
     const profile = personal
       ? profileHashes(name, position, unpacked, choices, personal)
       : profileNumbers(name, position, unpacked, choices, outcome);
     if (profile) return profile;
   }
-  const column = joinSegments(
-    segments.map((bytes) => (bytes[0] === packedForm ? textsOfUnpacked(unpack(bytes)) : decodeTexts(bytes))),
-  );
+  const column = joinSegments(segments.map((segment) => ('cells' in segment ? textsOfUnpacked(segment) : segment)));
   const profile = profileColumn(name, position, column, choices, personal);
   if (outcome && profile.suggestedRole === 'characteristic') {
     const missing = new Set(['', ...choices.missing]);

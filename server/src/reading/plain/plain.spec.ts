@@ -29,7 +29,8 @@ async function fast(bytes: Buffer, choices: ReadingChoices, size: number): Promi
   const keys: number[] = [];
   let coder: SegmentCoder | null = null;
   try {
-    for await (const { pieces, rows } of file.segments) {
+    for await (const records of file.segments) {
+      const { bytes: piece, rows } = records;
       coder ??= new SegmentCoder({
         delimiter: choices.delimiter.charCodeAt(0),
         trim: choices.trim,
@@ -40,11 +41,12 @@ async function fast(bytes: Buffer, choices: ReadingChoices, size: number): Promi
         mostRows: segmentRows,
       });
       coder.begin([], []);
-      for (const piece of pieces) coder.add(piece);
+      coder.add(piece);
       if (coder.rows !== rows) throw new NotPlain('records end elsewhere than they seemed to');
       const columns = coder.columns.map((column) => decodeSegment(encodePacked(column)));
       segments.push(Array.from({ length: rows }, (_, row) => columns.map(({ codes, texts }) => texts[codes[row]])));
       keys.push(...coder.keys.subarray(0, rows));
+      file.takeBack(records);
     }
   } catch (thrown) {
     if (thrown instanceof NotPlain) return thrown.message;

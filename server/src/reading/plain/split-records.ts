@@ -7,14 +7,16 @@ import { Scanner } from '../scanner';
 import type { FileFacts, ReadingChoices, ReadingOptions } from '../types';
 import { NotPlain } from './field-index';
 
-/** Whole records as UTF-8, each ending with a line feed: those of one segment, in pieces. */
+/** Whole records as UTF-8, each ending with a line feed: those of one segment, in memory that threads share. */
 export interface RecordsOfSegment {
   readonly rows: number;
-  readonly pieces: readonly Uint8Array<ArrayBuffer>[];
+  readonly bytes: Uint8Array<SharedArrayBuffer>;
 }
 
 export interface SplitFile {
   segments: AsyncGenerator<RecordsOfSegment, void, void>;
+  /** Takes the memory of a segment back once nobody looks at it any more: another is gathered in it. */
+  takeBack(records: RecordsOfSegment): void;
   /** The header, once the first segment has come; everything, once the last has. */
   facts(): FileFacts;
 }
@@ -23,8 +25,12 @@ const LF = 10;
 const CR = 13;
 const QUOTE = 34;
 const decodedPiece = 1 << 20;
+/** The end of a record that a block leaves unfinished is looked for in so much of the next one, then in more. */
+const firstLook = 1 << 16;
 /** An unfinished record of more bytes than this is not searched for its end again and again. */
 const longestRecord = 8 << 20;
+/** What a segment is gathered in is larger than earlier records say by this. */
+const reserve = 1.1;
 /** A segment is in memory as a whole, one for each thread: records that make it larger are left to the careful reader. */
 const largestSegment = 160 << 20;
 
@@ -34,38 +40,43 @@ const largestSegment = 160 << 20;
  *
  * @throws NotPlain; what `options.signal` was aborted with; the stream's own error
  */
-export function splitRecords(
-  stream: AsyncIterable<Buffer>,
-  reading: ReadingChoices,
-  options: Pick<ReadingOptions, 'mostRows' | 'mostColumns' | 'segmentRows' | 'onProgress' | 'signal'> = {},
-): SplitFile {
+export function splitRecords(stream: AsyncIterable<Buffer>, reading: ReadingChoices, options: SplitOptions = {}): SplitFile {
   const facts: FileFacts = { sha256: '', bytes: 0, rows: 0, header: [], problems: [] };
-  return { segments: split(stream, reading, options, facts), facts: () => facts };
+  const free: SharedArrayBuffer[] = [];
+  return {
+    segments: split(stream, reading, options, facts, free),
+    takeBack: ({ bytes }) => void free.push(bytes.buffer),
+    facts: () => facts,
+  };
+}
+
+export interface SplitOptions extends Pick<ReadingOptions, 'mostRows' | 'mostColumns' | 'segmentRows' | 'onProgress' | 'signal'> {
+  /** Most fields of a segment after the first: a wide file is cut into segments of fewer rows, so that each takes no more memory. */
+  segmentFields?: number;
 }
 
 async function* split(
   stream: AsyncIterable<Buffer>,
   reading: ReadingChoices,
-  options: Pick<ReadingOptions, 'mostRows' | 'mostColumns' | 'segmentRows' | 'onProgress' | 'signal'>,
+  options: SplitOptions,
   facts: FileFacts,
+  free: SharedArrayBuffer[],
 ): AsyncGenerator<RecordsOfSegment, void, void> {
-  const { mostRows = 1_000_000, mostColumns = 200, segmentRows = 65_536 } = options;
+  const { mostRows = 1_000_000, mostColumns = 200, segmentRows = 65_536, segmentFields = Infinity } = options;
   const ends = new RecordEnds(reading);
   const hash = createHash('sha256');
   const toUtf8 = utf8Of(reading);
+  const gathered = new Gathered(free);
   let rest: Buffer = Buffer.alloc(0);
   let open = false;
-  let pieces: Uint8Array<ArrayBuffer>[] = [];
-  let rows = 0;
-  let held = 0;
 
+  /** What is judged on the first segment (columns that identify people) is judged on as many rows as the careful reader takes. */
+  const mostInSegment = (): number =>
+    facts.rows === 0 ? segmentRows : Math.min(segmentRows, Math.max(1, Math.floor(segmentFields / facts.header.length)));
   const take = (): RecordsOfSegment => {
-    const taken = { rows, pieces };
-    facts.rows += rows;
+    const taken = gathered.take();
+    facts.rows += taken.rows;
     if (facts.rows > mostRows) throw new NotPlain('too many rows');
-    pieces = [];
-    rows = 0;
-    held = 0;
     return taken;
   };
   const readHeader = (block: Buffer): number => {
@@ -75,23 +86,43 @@ async function* split(
     if (facts.header.length > mostColumns) throw new NotPlain('too many columns');
     return end;
   };
-  /** What is left of a block after its whole records. */
-  const use = function* (block: Buffer): Generator<RecordsOfSegment, Buffer> {
-    let at = facts.header.length === 0 ? readHeader(block) : 0;
-    while (facts.header.length > 0) {
-      const { records, end } = ends.find(block, at, segmentRows - rows);
-      if (records === 0) break;
+  /** Takes the whole records of a block from there on; returns where what is left begins. */
+  const useRecords = function* (block: Buffer, from: number): Generator<RecordsOfSegment, number> {
+    let at = from;
+    for (;;) {
+      const most = mostInSegment();
+      const { records, end } = ends.find(block, at, most - gathered.rows);
+      if (records === 0) return at;
       const part = block.subarray(at, end);
       if (!isUtf8(part)) throw new NotPlain('bytes that are not UTF-8');
-      held += part.length;
-      if (held > largestSegment) throw new NotPlain('very long records');
-      pieces.push(new Uint8Array(part));
-      rows += records;
+      gathered.add(part, records, most);
       at = end;
-      if (rows === segmentRows) yield take();
+      if (gathered.rows === most) yield take();
     }
-    if (block.length - at > longestRecord) throw new NotPlain('a very long record');
-    return Buffer.from(block.subarray(at));
+  };
+  /** What is left of a block, with what the one before left, after its whole records. */
+  const use = function* (block: Buffer): Generator<RecordsOfSegment, Buffer> {
+    let at = 0;
+    if (facts.header.length === 0) {
+      const whole = rest.length === 0 ? block : Buffer.concat([rest, block]);
+      at = readHeader(whole);
+      if (facts.header.length > 0) at = yield* useRecords(whole, at);
+      return leftOf(whole, at);
+    }
+    if (rest.length > 0) {
+      // Only as much of the block is copied as the record that was left unfinished takes.
+      let size = firstLook;
+      let joined = Buffer.concat([rest, block.subarray(0, size)]);
+      while (ends.find(joined, 0, 1).records === 0) {
+        if (size >= block.length) return leftOf(joined, 0);
+        size *= 8;
+        joined = Buffer.concat([rest, block.subarray(0, size)]);
+      }
+      const { end } = ends.find(joined, 0, 1);
+      yield* useRecords(joined.subarray(0, end), 0);
+      at = end - rest.length;
+    }
+    return leftOf(block, yield* useRecords(block, at));
   };
 
   for await (const chunk of stream) {
@@ -106,39 +137,85 @@ async function* split(
       rest = Buffer.alloc(0);
       open = true;
     }
-    for (const block of toUtf8.pieces(bytes)) rest = yield* use(rest.length === 0 ? block : Buffer.concat([rest, block]));
-    options.onProgress?.({ bytes: facts.bytes, rows: facts.rows + rows });
+    for (const block of toUtf8.pieces(bytes)) rest = yield* use(block);
+    options.onProgress?.({ bytes: facts.bytes, rows: facts.rows + gathered.rows });
   }
   options.signal?.throwIfAborted();
   if (!open) {
     const bytes = opened(rest, reading);
     rest = Buffer.alloc(0);
-    for (const block of toUtf8.pieces(bytes)) rest = yield* use(rest.length === 0 ? block : Buffer.concat([rest, block]));
+    for (const block of toUtf8.pieces(bytes)) rest = yield* use(block);
   }
   toUtf8.end();
   if (rest.length > 0) {
     if (/^[ \t]*$/.test(rest.toString('latin1'))) throw new NotPlain('blanks at the end');
-    rest = yield* use(Buffer.concat([rest, Buffer.from('\n')]));
+    rest = yield* use(Buffer.from('\n'));
     if (rest.length > 0) throw new NotPlain('an open quote');
   }
-  if (facts.header.length > 1) rows -= dropBlankLines(pieces);
-  if (rows > 0) yield take();
+  if (facts.header.length > 1) gathered.dropBlankLines();
+  if (gathered.rows > 0) yield take();
   if (facts.rows === 0) throw new NotPlain('no rows');
   facts.sha256 = hash.digest('hex');
 }
 
-/** Blank lines at the end of a file are harmless: removed, and counted. */
-function dropBlankLines(pieces: Uint8Array<ArrayBuffer>[]): number {
-  let dropped = 0;
-  for (;;) {
-    const last = pieces.at(-1);
-    if (last === undefined) return dropped;
-    let at = last.length - 1;
-    if (at > 0 && last[at - 1] === CR) at--;
-    if (at > 0 && last[at - 1] !== LF) return dropped;
-    dropped++;
-    if (at === 0) pieces.pop();
-    else pieces[pieces.length - 1] = last.slice(0, at);
+function leftOf(block: Buffer, at: number): Buffer {
+  if (block.length - at > longestRecord) throw new NotPlain('a very long record');
+  return Buffer.from(block.subarray(at));
+}
+
+/** The records of one segment as they come, copied once into memory that is used again from segment to segment. */
+class Gathered {
+  rows = 0;
+  private bytes = new Uint8Array(new SharedArrayBuffer(0));
+  private length = 0;
+
+  /** @param free memory of segments that nobody needs any more */
+  constructor(private readonly free: SharedArrayBuffer[]) {}
+
+  /** @param most rows of the segment, from which follows what memory it will take */
+  add(part: Uint8Array, rows: number, most: number): void {
+    const needed = this.length + part.length;
+    if (needed > largestSegment) throw new NotPlain('very long records');
+    if (needed > this.bytes.length) this.makeRoom(needed, Math.ceil((reserve * needed * most) / (this.rows + rows)));
+    this.bytes.set(part, this.length);
+    this.length = needed;
+    this.rows += rows;
+  }
+
+  private makeRoom(needed: number, expected: number): void {
+    const before = this.bytes.subarray(0, this.length);
+    if (this.length === 0) {
+      const found = this.free.findIndex(({ byteLength }) => byteLength >= expected);
+      const [kept] = found === -1 ? [] : this.free.splice(found, 1);
+      if (kept) {
+        this.bytes = new Uint8Array(kept);
+        return;
+      }
+      // Those that are too small are left to the garbage collector.
+      this.free.length = 0;
+    }
+    // Pages that nothing is written to take no memory.
+    this.bytes = new Uint8Array(new SharedArrayBuffer(Math.max(needed, Math.min(expected, largestSegment))));
+    this.bytes.set(before);
+  }
+
+  take(): RecordsOfSegment {
+    const taken = { rows: this.rows, bytes: this.bytes.subarray(0, this.length) };
+    this.bytes = new Uint8Array(new SharedArrayBuffer(0));
+    this.length = 0;
+    this.rows = 0;
+    return taken;
+  }
+
+  /** Blank lines at the end of a file are harmless. */
+  dropBlankLines(): void {
+    for (; this.length > 0; this.rows--) {
+      const { bytes } = this;
+      let at = this.length - 1;
+      if (at > 0 && bytes[at - 1] === CR) at--;
+      if (at > 0 && bytes[at - 1] !== LF) return;
+      this.length = at;
+    }
   }
 }
 

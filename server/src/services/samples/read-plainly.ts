@@ -11,9 +11,13 @@ import type { CodeAnswer } from '../../threads/code-segment';
 import { runInThread, threadCount } from '../../threads/run-in-thread';
 import type { ReadRows, Reading } from './read-rows';
 
+/** Fields of a segment after the first: with 100 columns half as many rows as the first has. */
+const segmentFields = 50 * segmentRows;
+
 /**
  * Reads a file in which nothing is unusual: this thread finds where records end, the worker threads code whole segments of records as bytes,
- * and what they give is stored while they go on. In memory are the segments under way, one for each thread and one that is gathered.
+ * and what they give is stored while they go on. In memory are the segments under way, one for each thread and one that is gathered; their memory is
+ * used again from segment to segment.
  *
  * @throws NotPlain when the file has to be read carefully from its beginning; nothing of what was stored may then be used
  */
@@ -26,6 +30,7 @@ export async function readPlainly(reading: Reading, readingId: string): Promise<
     mostRows: fileLimits.rows,
     mostColumns: fileLimits.columns,
     segmentRows,
+    segmentFields,
     signal,
     onProgress: ({ bytes }) => reading.progress(bytes),
   });
@@ -35,13 +40,12 @@ export async function readPlainly(reading: Reading, readingId: string): Promise<
   let styles: readonly (NumberStyle | null)[] = [];
   let writing: Promise<void> = Promise.resolve();
 
-  const code = async ({ pieces, rows }: RecordsOfSegment): Promise<Extract<CodeAnswer, { notPlain: null }>> => {
+  const code = async (records: RecordsOfSegment): Promise<Extract<CodeAnswer, { notPlain: null }>> => {
     const { delimiter, trim, decimal, missing } = choices;
     const answer = await runInThread(
       'sample.code',
       {
-        pieces,
-        rows,
+        ...records,
         header: file.facts().header,
         choices: { delimiter, trim, decimal, missing },
         mostBytes: fileLimits.cellBytes,
@@ -50,8 +54,9 @@ export async function readPlainly(reading: Reading, readingId: string): Promise<
         personal,
         key,
       },
-      { signal, transfer: pieces.map(({ buffer }) => buffer) },
+      { signal },
     );
+    file.takeBack(records);
     if (answer.notPlain !== null) throw new NotPlain(answer.notPlain);
     return answer;
   };
