@@ -16,7 +16,9 @@ import {
   TooManyCategories,
   fineClasses,
   fineEntry,
+  slotsOfTexts,
   splitFineClasses,
+  tallyColumn,
 } from './fine-classes';
 
 /** Fine classes leave room in a byte for special codes and missing. */
@@ -63,16 +65,18 @@ export const classColumn: Task<ClassColumn, ClassedColumn | { readonly unusable:
 }) => {
   try {
     const source = sourceOfOne(defined, column, counted.rows);
-    const counts = fineClasses(defined, source, data, counted, asked.fineClasses);
+    const tallied = tallyColumn(defined, source, counted);
+    const counts = fineClasses(defined, source, data, counted, tallied, asked.fineClasses);
     if (counts.fine.kind === 'categorical' && counts.fine.categories.length === 0)
       return { unusable: 'No development row has a value.' };
     const { bins: automatic, constraints } = classFine(counts.fine, asked);
     // Cuts of earlier edits lie where they lay: the fine classes are split there, after the automatic bins have been found without them.
     const more = carriedEdges(counts.fine, earlier).slice(0, Math.max(0, mostFineEdges - counts.fine.edges.length));
-    const { fine, outOfTime } = more.length > 0 ? splitFineClasses(defined, source, data, counted, counts.fine, more) : counts;
+    const { fine, outOfTime, slotOf } =
+      more.length > 0 ? splitFineClasses(defined, source, data, counted, tallied, counts.fine, more) : counts;
     const { bins, steps } = carryEdits(fine, automatic, earlier);
     const current = bins as Bins;
-    const months = rowMonths && countMonths(defined, source, data, counted, fine, rowMonths);
+    const months = rowMonths && countMonths(tallied && tallied.column, slotOf, counted, fine, rowMonths);
     const classing = steps.some(({ kept }) => kept) ? ({ made: 'by hand' } as const) : automaticClassing(constraints);
     const definition = withBins(fineEntry(defined, fine.edges, fine.categories), current, classing);
     return {
@@ -107,8 +111,9 @@ export const splitColumn: Task<SplitColumn, FineClassing & { readonly months: Co
   months,
 }) => {
   const source = sourceOfOne(defined, column, counted.rows);
-  const split = splitFineClasses(defined, source, data, counted, fine, [edge]);
-  return { ...split, months: months && countMonths(defined, source, data, counted, split.fine, months) };
+  const tallied = tallyColumn(defined, source, counted);
+  const { slotOf, ...split } = splitFineClasses(defined, source, data, counted, tallied, fine, [edge]);
+  return { ...split, months: months && countMonths(tallied && tallied.column, slotOf, counted, split.fine, months) };
 };
 
 /** Counts the fine classes that a column has by month. */
@@ -119,7 +124,12 @@ export const countColumnMonths: Task<Omit<SplitColumn, 'edge' | 'months'> & { re
   counted,
   fine,
   months,
-}) => countMonths(defined, sourceOfOne(defined, column, counted.rows), data, counted, fine, months);
+}) => {
+  const source = sourceOfOne(defined, column, counted.rows);
+  const tallied = tallyColumn(defined, source, counted);
+  const slotOf = tallied && slotsOfTexts(defined, tallied, data, counted, source, fine);
+  return countMonths(tallied && tallied.column, slotOf, counted, fine, months);
+};
 
 export interface ReclassFine {
   readonly characteristics: readonly {

@@ -35,6 +35,11 @@ export interface FineClassing {
   readonly outOfTime: SlotCounts;
 }
 
+/** With the slot of each of the column's texts, by which months are counted; null without a column. */
+export interface SlottedFineClassing extends FineClassing {
+  readonly slotOf: Uint8Array | null;
+}
+
 /**
  * Fine classes of a characteristic with goods and bads by partition. Cuts come from known values of development rows with a good or bad
  * outcome; every category of those rows is a class.
@@ -46,17 +51,22 @@ export function fineClasses(
   source: ColumnSource,
   data: DataReading,
   counted: CountedRows,
+  tallied: TalliedColumn | null,
   fineClassCount: number,
-): FineClassing {
+): SlottedFineClassing {
   if (defined.kind === 'categorical') {
-    const categories = categoriesOf(defined, source, data, counted);
-    return countSlots(defined, source, data, counted, { edges: [], categories, range: null });
+    const categories = tallied ? categoriesOf(defined, data, tallied) : [];
+    return countSlots(defined, source, data, counted, tallied, { edges: [], categories, range: null });
   }
-  const { values, rows } = knownValues(defined, source, data, counted);
+  const { values, rows } = tallied ? knownValues(defined, data, tallied) : { values: [], rows: [] };
   const edges = values.length > 0 ? fineEdgesOfCounts(values, rows, fineClassCount) : [];
-  let range: [number, number] | null = null;
-  for (const value of values) range = range ? [Math.min(range[0], value), Math.max(range[1], value)] : [value, value];
-  return countSlots(defined, source, data, counted, { edges, categories: [], range });
+  let [least, most] = [Infinity, -Infinity];
+  for (const value of values) {
+    if (value < least) least = value;
+    if (value > most) most = value;
+  }
+  const range: [number, number] | null = values.length > 0 ? [least, most] : null;
+  return countSlots(defined, source, data, counted, tallied, { edges, categories: [], range });
 }
 
 /** The same fine classes with more edges, counted anew from the column. */
@@ -65,11 +75,12 @@ export function splitFineClasses(
   source: ColumnSource,
   data: DataReading,
   counted: CountedRows,
+  tallied: TalliedColumn | null,
   fine: Fine,
   more: readonly number[],
-): FineClassing {
+): SlottedFineClassing {
   const edges = [...new Set([...fine.edges, ...more])].sort((a, b) => a - b);
-  return countSlots(defined, source, data, counted, { edges, categories: [], range: fine.range });
+  return countSlots(defined, source, data, counted, tallied, { edges, categories: [], range: fine.range });
 }
 
 /** A specification entry whose bins are the fine classes, so that the chain itself gives each row its slot. */
@@ -100,10 +111,9 @@ function countSlots(
   source: ColumnSource,
   data: DataReading,
   counted: CountedRows,
+  tallied: TalliedColumn | null,
   classes: Pick<Fine, 'edges' | 'categories' | 'range'>,
-): FineClassing {
-  const entry = fineEntry(defined, classes.edges, classes.categories);
-  const column = textColumn(defined, source, counted);
+): SlottedFineClassing {
   const empty: Fine = {
     kind: defined.kind,
     ...classes,
@@ -114,66 +124,80 @@ function countSlots(
     outOfTime: null,
   };
   const slots = slotCount(empty);
+  const slotOf = tallied && slotsOfTexts(defined, tallied, data, counted, source, empty);
   const count = (): SlotCounts => ({ rows: zeros(slots), goods: zeros(slots), bads: zeros(slots) });
   const [development, holdOut, outOfTime] = [count(), count(), count()];
-  if (column) {
-    const slotOf = slotsOfTexts(defined, entry, column, data, counted, source, slots);
-    const tally = tallyTexts(column, counted);
+  if (tallied && slotOf) {
+    const { rows, weights } = tallied;
     for (const [part, counts] of [
       [DEVELOPMENT, development],
       [HOLD_OUT, holdOut],
       [OUT_OF_TIME, outOfTime],
     ] as const) {
-      for (let text = 0; text < column.texts.length; text++) {
+      for (let text = 0; text < slotOf.length; text++) {
         const slot = slotOf[text];
         const at = text * groups + 2 * (part - 1);
-        counts.rows[slot] += tally.rows[at] + tally.rows[at + 1];
-        counts.goods[slot] += tally.weights[at + 1];
-        counts.bads[slot] += tally.weights[at];
+        counts.rows[slot] += rows[at] + rows[at + 1];
+        counts.goods[slot] += weights[at + 1];
+        counts.bads[slot] += weights[at];
       }
     }
   }
-  return { fine: { ...empty, development, holdOut }, outOfTime };
+  return { fine: { ...empty, development, holdOut }, outOfTime, slotOf };
 }
 
 /** Partition by outcome: what rows of one text are told apart by. */
 const groups = 6;
 
-interface Tally {
+/** A column with what its rows come to for each of its different texts, of which there are few. */
+export interface TalliedColumn {
+  readonly column: TextColumn;
   /** By text, then by partition (development, hold-out, out-of-time), bads before goods. */
   readonly rows: Uint32Array | Float64Array;
   readonly weights: Uint32Array | Float64Array;
+  /** By text: 1 where a row that is not out has it. */
+  readonly present: Uint8Array;
 }
 
-/**
- * Rows and weights of each different text by partition and outcome: the one pass over the rows. All that follows works on the texts, of which
- * there are few.
- */
-function tallyTexts(column: TextColumn, { partition, outcome, weights }: CountedRows): Tally {
+/** The one pass over the rows: all that follows works on the texts. Null where the source has no such column. */
+export function tallyColumn(
+  defined: DefinedCharacteristic,
+  source: ColumnSource,
+  { rows: count, partition, outcome, weights }: CountedRows,
+): TalliedColumn | null {
+  const found = source.column(defined.column);
+  if (!found) return null;
+  const column = textsOf(found, count);
   const { codes } = column;
   const rows = new Uint32Array(column.texts.length * groups);
   const sums = weights ? new Float64Array(rows.length) : rows;
+  const present = new Uint8Array(column.texts.length);
   for (let row = 0; row < codes.length; row++) {
+    const where = partition[row];
+    if (where === OUT) continue;
+    const code = codes[row];
+    present[code] = 1;
     // Partitions count from 1, 0 is out; outcome 0 is bad, 1 good, anything else is not counted.
-    if (partition[row] === OUT || outcome[row] > 1) continue;
-    const at = codes[row] * groups + 2 * (partition[row] - 1) + outcome[row];
+    if (outcome[row] > 1) continue;
+    const at = code * groups + 2 * (where - 1) + outcome[row];
     rows[at]++;
     if (weights) sums[at] += weights[row];
   }
-  return { rows, weights: sums };
+  return { column, rows, weights: sums, present };
 }
 
 /** The slot of each text. A category that no class has is one that development has not seen: the last slot is theirs. */
 export function slotsOfTexts(
   defined: DefinedCharacteristic,
-  entry: BinnedCharacteristic,
-  column: TextColumn,
+  tallied: TalliedColumn,
   data: DataReading,
   counted: CountedRows,
   source: ColumnSource,
-  slots: number,
+  fine: Pick<Fine, 'kind' | 'edges' | 'categories' | 'special'>,
 ): Uint8Array {
-  return codesOfTexts(defined, entry, column, data, counted, source).map((code) => (code === NO_BIN ? slots - 1 : code));
+  const unseen = slotCount(fine as Fine) - 1;
+  const entry = fineEntry(defined, fine.edges, fine.categories);
+  return codesOfTexts(defined, entry, tallied, data, counted, source).map((code) => (code === NO_BIN ? unseen : code));
 }
 
 /**
@@ -183,15 +207,14 @@ export function slotsOfTexts(
 function codesOfTexts(
   defined: DefinedCharacteristic,
   entry: BinnedCharacteristic,
-  column: TextColumn,
+  { column, present }: TalliedColumn,
   data: DataReading,
   counted: CountedRows,
   source: ColumnSource,
 ): Uint8Array {
   const texts = column.texts.length;
-  const partition = new Uint8Array(texts).fill(OUT);
-  for (let row = 0; row < counted.rows; row++) if (counted.partition[row] !== OUT) partition[column.codes[row]] = DEVELOPMENT;
-  const each: TextColumn = { kind: 'texts', codes: Uint32Array.from({ length: texts }, (_, text) => text), texts: column.texts };
+  const partition = present.map((one) => (one === 1 ? DEVELOPMENT : OUT));
+  const each = eachText(column);
   const ofTexts: ColumnSource = { rows: texts, column: (name) => (name === defined.column ? each : undefined) };
   const coding = { data, characteristics: [entry] };
   try {
@@ -204,49 +227,41 @@ function codesOfTexts(
   }
 }
 
-export function textColumn(defined: DefinedCharacteristic, source: ColumnSource, counted: CountedRows): TextColumn | null {
-  const column = source.column(defined.column);
-  return column ? textsOf(column, counted.rows) : null;
-}
+/** A column with one row for each different text. */
+const eachText = ({ texts }: TextColumn): TextColumn => {
+  const codes = new Uint32Array(texts.length);
+  for (let text = 0; text < codes.length; text++) codes[text] = text;
+  return { kind: 'texts', codes, texts };
+};
 
 /** The different known values of development rows with a good or bad outcome, with the number of rows of each. */
 function knownValues(
   defined: DefinedCharacteristic,
-  source: ColumnSource,
   data: DataReading,
-  counted: CountedRows,
-): { values: Float64Array; rows: Float64Array } {
-  const column = textColumn(defined, source, counted);
-  if (!column) return { values: new Float64Array(0), rows: new Float64Array(0) };
-  const each: ColumnSource = {
-    rows: column.texts.length,
-    column: () => ({ kind: 'texts', codes: Uint32Array.from(column.texts, (_, text) => text), texts: column.texts }),
-  };
-  const numbers = new Columns(each, data).numbers(defined.column);
+  { column, rows: tally }: TalliedColumn,
+): { values: number[]; rows: number[] } {
+  const each = eachText(column);
+  const numbers = new Columns({ rows: column.texts.length, column: () => each }, data).numbers(defined.column);
   const special = new Set(defined.special.flatMap(({ values }) => values.map(Number)));
-  const tally = tallyTexts(column, counted);
   const values: number[] = [];
   const rows: number[] = [];
   for (let text = 0; numbers && text < column.texts.length; text++) {
-    const developed = tally.rows[text * groups] + tally.rows[text * groups + 1];
+    const developed = tally[text * groups] + tally[text * groups + 1];
     const value = developed > 0 ? numbers.number(text) : NaN;
     if (Number.isNaN(value) || special.has(value)) continue;
     values.push(value);
     rows.push(developed);
   }
-  return { values: Float64Array.from(values), rows: Float64Array.from(rows) };
+  return { values, rows };
 }
 
 /** By falling number of development rows, so that what matters stands first; equal ones by their text. */
-function categoriesOf(defined: DefinedCharacteristic, source: ColumnSource, data: DataReading, counted: CountedRows): string[] {
-  const columns = new Columns(source, data);
-  const column = columns.text(defined.column);
-  if (!column) return [];
+function categoriesOf(defined: DefinedCharacteristic, data: DataReading, { column, rows }: TalliedColumn): string[] {
+  const missing = new Set(data.missing);
   const special = new Set(defined.special.flatMap(({ values }) => values.map(String)));
-  const tally = tallyTexts(column, counted);
   const categories = column.texts
-    .map((text, code) => ({ text, rows: tally.rows[code * groups] + tally.rows[code * groups + 1] }))
-    .filter(({ text, rows }) => rows > 0 && !columns.isMissing(text) && !special.has(text))
+    .map((text, code) => ({ text, rows: rows[code * groups] + rows[code * groups + 1] }))
+    .filter(({ text, rows: developed }) => developed > 0 && !missing.has(text) && !special.has(text))
     .sort((a, b) => b.rows - a.rows || (a.text < b.text ? -1 : 1));
   if (categories.length > mostCategories) throw new TooManyCategories(categories.length);
   return categories.map(({ text }) => text);

@@ -1,11 +1,10 @@
 import type { Fine } from '@tallystone/contracts/binnings/bins';
 import type { MonthCounts, MonthlyCounts } from '@tallystone/contracts/binnings/months';
-import type { DataReading } from '@tallystone/contracts/specification/types';
 import { slotCount } from '@tallystone/numeric/bench';
 import { NO_MONTH, type RowMonths } from '../replay/row-months';
-import type { ColumnSource } from '../replay/source';
+import type { TextColumn } from '../replay/source';
 import { DEVELOPMENT, HOLD_OUT, OUT, OUT_OF_TIME } from '../replay/types';
-import { type CountedRows, type DefinedCharacteristic, fineEntry, slotsOfTexts, textColumn } from './fine-classes';
+import type { CountedRows } from './fine-classes';
 
 export interface CountedMonths {
   readonly counts: MonthlyCounts;
@@ -16,47 +15,51 @@ export interface CountedMonths {
 /**
  * Goods and bads of every slot by month and partition: the counts of the fine classes, parted by month. Rows without a month are counted alone.
  *
- * @throws ReplayError for values that are no numbers
+ * @param slotOf the slot of each of the column's texts; null where there is no column
  */
 export function countMonths(
-  defined: DefinedCharacteristic,
-  source: ColumnSource,
-  data: DataReading,
-  counted: CountedRows,
+  column: TextColumn | null,
+  slotOf: Uint8Array | null,
+  { rows, partition, outcome, weights }: CountedRows,
   fine: Pick<Fine, 'kind' | 'edges' | 'categories' | 'special'>,
   months: RowMonths,
 ): CountedMonths {
   const slots = slotCount(fine as Fine);
   const size = months.names.length * slots;
-  const part = () => ({ rows: new Float64Array(size), goods: new Float64Array(size), bads: new Float64Array(size) });
-  const parts = { [DEVELOPMENT]: part(), [HOLD_OUT]: part(), [OUT_OF_TIME]: part() };
+  // By partition, month and slot, bads before goods.
+  const counts = new Uint32Array(3 * size * 2);
+  const sums = weights ? new Float64Array(counts.length) : counts;
   let undated = 0;
-  const column = textColumn(defined, source, counted);
-  if (column) {
-    const slotOf = slotsOfTexts(defined, fineEntry(defined, fine.edges, fine.categories), column, data, counted, source, slots);
-    const { partition, outcome, weights } = counted;
-    for (let row = 0; row < counted.rows; row++) {
+  if (column && slotOf) {
+    const { codes } = column;
+    for (let row = 0; row < rows; row++) {
       const where = partition[row];
       // Outcome 0 is bad, 1 good, anything else is not counted.
       if (where === OUT || outcome[row] > 1) continue;
-      if (months.of[row] === NO_MONTH) {
+      const month = months.of[row];
+      if (month === NO_MONTH) {
         if (where !== OUT_OF_TIME) undated++;
         continue;
       }
-      const at = months.of[row] * slots + slotOf[column.codes[row]];
-      const counts = parts[where as keyof typeof parts];
-      counts.rows[at]++;
-      (outcome[row] === 1 ? counts.goods : counts.bads)[at] += weights === null ? 1 : weights[row];
+      const at = ((where - 1) * size + month * slots + slotOf[codes[row]]) * 2 + outcome[row];
+      counts[at]++;
+      if (weights) sums[at] += weights[row];
     }
   }
-  const listed = ({ rows, goods, bads }: ReturnType<typeof part>): MonthCounts[] =>
+  const listed = (where: number): MonthCounts[] =>
     months.names.flatMap((month, index) => {
-      const of = (values: Float64Array): number[] => [...values.subarray(index * slots, (index + 1) * slots)];
-      const one = { month, rows: of(rows), goods: of(goods), bads: of(bads) };
+      const first = ((where - 1) * size + index * slots) * 2;
+      const of = (value: (at: number) => number): number[] => Array.from({ length: slots }, (_, slot) => value(first + 2 * slot));
+      const one = {
+        month,
+        rows: of((at) => counts[at] + counts[at + 1]),
+        goods: of((at) => sums[at + 1]),
+        bads: of((at) => sums[at]),
+      };
       return one.rows.some((count) => count > 0) ? [one] : [];
     });
   return {
-    counts: { development: listed(parts[DEVELOPMENT]), holdOut: listed(parts[HOLD_OUT]), undated },
-    outOfTime: listed(parts[OUT_OF_TIME]),
+    counts: { development: listed(DEVELOPMENT), holdOut: listed(HOLD_OUT), undated },
+    outOfTime: listed(OUT_OF_TIME),
   };
 }

@@ -2,8 +2,8 @@ import type { Sequelize, Transaction } from 'sequelize';
 import { readBytes } from '../database/read-bytes';
 import { rows } from '../database/sql';
 import type { ColumnSource, TextColumn } from '../replay/source';
-import { joinSegments } from './joinSegments';
-import { type TextSegment, decodeSegment, encodeSegment } from './segmentCoding';
+import { joinStored } from './joinStored';
+import { type TextSegment, encodeSegment } from './segmentCoding';
 
 /** Values per segment of a column: 2 bytes tell any of them apart. */
 export const segmentRows = 65_536;
@@ -66,10 +66,37 @@ export async function readStoredColumn(
   position: number,
   count: number,
 ): Promise<TextColumn> {
-  const column = joinSegments((await readContents(sequelize, readingId, position)).map(decodeSegment));
+  const column = joinStored(await readContents(sequelize, readingId, position));
   if (column.codes.length !== count)
     throw new Error(`Column ${position} of reading ${readingId} has ${column.codes.length} of ${count} rows`);
   return column;
+}
+
+/** Where the columns of a sample that has been read are stored. */
+export interface StoredSample {
+  readonly readingId: string;
+  readonly rows: number;
+  readonly positions: ReadonlyMap<string, number>;
+}
+
+/** @throws when there is no such sample or it has not been read */
+export async function findStored(sequelize: Sequelize, sampleId: string): Promise<StoredSample> {
+  const [sample] = await rows<{ readingId: string | null; rows: number }>(
+    sequelize,
+    'SELECT reading_id AS "readingId", rows FROM samples WHERE id = $1',
+    [sampleId],
+  );
+  if (!sample?.readingId) throw new Error(`Sample ${sampleId} has not been read`);
+  const stored = await rows<{ position: number; name: string }>(
+    sequelize,
+    'SELECT position, name FROM sample_columns WHERE reading_id = $1 ORDER BY position',
+    [sample.readingId],
+  );
+  return {
+    readingId: sample.readingId,
+    rows: sample.rows,
+    positions: new Map(stored.map(({ name, position }) => [name, position])),
+  };
 }
 
 /**
@@ -82,21 +109,11 @@ export async function readStoredColumn(
  * const prepared = prepare(specification, source);
  */
 export async function openSample(sequelize: Sequelize, sampleId: string, names: Iterable<string>): Promise<ColumnSource> {
-  const [sample] = await rows<{ readingId: string | null; rows: number }>(
-    sequelize,
-    'SELECT reading_id AS "readingId", rows FROM samples WHERE id = $1',
-    [sampleId],
-  );
-  if (!sample?.readingId) throw new Error(`Sample ${sampleId} has not been read`);
+  const { readingId, rows: count, positions } = await findStored(sequelize, sampleId);
   const wanted = new Set(names);
-  const stored = await rows<{ position: number; name: string }>(
-    sequelize,
-    'SELECT position, name FROM sample_columns WHERE reading_id = $1 ORDER BY position',
-    [sample.readingId],
-  );
   const columns = new Map<string, TextColumn>();
-  for (const { position, name } of stored) {
-    if (wanted.has(name)) columns.set(name, await readStoredColumn(sequelize, sample.readingId, position, sample.rows));
+  for (const [name, position] of positions) {
+    if (wanted.has(name)) columns.set(name, await readStoredColumn(sequelize, readingId, position, count));
   }
-  return { rows: sample.rows, column: (name) => columns.get(name) };
+  return { rows: count, column: (name) => columns.get(name) };
 }

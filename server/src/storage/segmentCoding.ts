@@ -1,5 +1,7 @@
 import { constants, deflateRawSync, inflateRawSync } from 'node:zlib';
-import { packedForm, textsOfUnpacked, unpack } from './packedSegment';
+import { textBase } from '../reading/plain/column-coder';
+import { mostWhole } from '../reading/plain/number-style';
+import { type UnpackedSegment, packedForm, textsOfUnpacked, unpack } from './packedSegment';
 
 /**
  * One segment of a column, up to 65,536 texts, as bytes. Distinct texts form a dictionary and each row holds the narrowest index into it. A
@@ -114,6 +116,32 @@ export const inflateSegment = (content: Uint8Array): Buffer => inflateRawSync(co
 
 /** Of form 1, inflated. */
 export function decodeTexts(bytes: Buffer): TextSegment {
+  const { indexes, numbers, decimals, texts } = readTexts(bytes);
+  return { codes: indexes, texts: [...Array.from(numbers, (value) => unscaled(value, decimals)), ...texts] };
+}
+
+/**
+ * The same with its numbers as numbers, in the way of form 2; null where they have more digits than those may have.
+ */
+export function unpackTexts(bytes: Buffer): UnpackedSegment | null {
+  const { indexes, numbers, decimals, texts } = readTexts(bytes);
+  const count = numbers.length;
+  // Nine digits with a sign between them are what the style of form 2 can spell.
+  if (count > 0 && (decimals > 8 || numbers[0] <= -mostWhole || numbers[count - 1] >= mostWhole)) return null;
+  const cells = new Int32Array(indexes.length);
+  const cellOf = new Int32Array(count + texts.length);
+  for (let index = 0; index < cellOf.length; index++) cellOf[index] = index < count ? numbers[index] : textBase + index - count;
+  for (let row = 0; row < cells.length; row++) cells[row] = cellOf[indexes[row]];
+  return { rows: cells.length, cells, style: count > 0 ? { least: decimals, most: decimals, sign: 46 } : null, texts };
+}
+
+/** What lies in a segment of form 1: its numbers ascending, its other texts, and per row the place of one of them, numbers first. */
+function readTexts(bytes: Buffer): {
+  indexes: Uint8Array | Uint16Array | Uint32Array;
+  numbers: Float64Array;
+  decimals: number;
+  texts: string[];
+} {
   let at = 0;
   const varint = (): number => {
     let value = 0;
@@ -129,14 +157,14 @@ export function decodeTexts(bytes: Buffer): TextSegment {
   const width = bytes[at++];
   const decimals = bytes[at++];
   const rows = varint();
-  const texts: string[] = [];
-  const numbers = varint();
+  const numbers = new Float64Array(varint());
   let value = 0;
-  for (let index = 0; index < numbers; index++) {
+  for (let index = 0; index < numbers.length; index++) {
     const step = varint();
     value = index === 0 ? (step % 2 === 1 ? -(step + 1) / 2 : step / 2) : value + step;
-    texts.push(unscaled(value, decimals));
+    numbers[index] = value;
   }
+  const texts: string[] = [];
   const others = varint();
   for (let index = 0; index < others; index++) {
     const length = varint();
@@ -144,12 +172,12 @@ export function decodeTexts(bytes: Buffer): TextSegment {
     at += length;
   }
   if (width <= 1) {
-    const codes = new Uint8Array(rows);
-    if (width === 1) codes.set(bytes.subarray(at, at + rows));
-    return { codes, texts };
+    const indexes = new Uint8Array(rows);
+    if (width === 1) indexes.set(bytes.subarray(at, at + rows));
+    return { indexes, numbers, decimals, texts };
   }
-  const codes = width === 2 ? new Uint16Array(rows) : new Uint32Array(rows);
+  const indexes = width === 2 ? new Uint16Array(rows) : new Uint32Array(rows);
   for (let row = 0; row < rows; row++)
-    codes[row] = width === 2 ? bytes.readUInt16LE(at + row * 2) : bytes.readUInt32LE(at + row * 4);
-  return { codes, texts };
+    indexes[row] = width === 2 ? bytes.readUInt16LE(at + row * 2) : bytes.readUInt32LE(at + row * 4);
+  return { indexes, numbers, decimals, texts };
 }

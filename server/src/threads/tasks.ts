@@ -1,7 +1,8 @@
-import { classColumn, countColumnMonths, reclassFine, splitColumn } from '../classing/class-column';
+import { countColumnMonths, reclassFine, splitColumn } from '../classing/class-column';
 import { correlateCodes, inflate } from '../classing/correlate';
 import { balanceColumn } from './balance-column';
 import { buildScorecard } from './build-scorecard';
+import { classStored } from './class-stored';
 import { codeSegment } from './code-segment';
 import { compareFits } from './compare-fits';
 import { fitPenaltyPath } from './fit-path';
@@ -17,7 +18,7 @@ import { resampleVersion } from './study-stability';
  * Another entity adds an import and a line. The pool takes only the types from here, so that the web server does not load the numbers.
  */
 export const tasks = {
-  'binning.class': classColumn,
+  'binning.class': classStored,
   'binning.correlate': correlateCodes,
   'binning.inflate': inflate,
   'binning.months': countColumnMonths,

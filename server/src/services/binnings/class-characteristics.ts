@@ -5,9 +5,10 @@ import type { Sequelize } from 'sequelize';
 import type { ClassedColumn } from '../../classing/class-column';
 import type { CountedRows } from '../../classing/fine-classes';
 import type { RowMonths } from '../../replay/row-months';
-import { openSample } from '../../storage/columnStore';
-import { runInThread, threadCount } from '../../threads/run-in-thread';
+import { findStored, readContents } from '../../storage/columnStore';
+import { runInThread } from '../../threads/run-in-thread';
 import { sharedBytes } from '../../threads/shared-bytes';
+import { inTurn } from '../samples/in-turn';
 import type { Barred } from './barred';
 
 export interface ColumnToClass {
@@ -42,7 +43,8 @@ export function shared(counted: CountedRows): CountedRows {
 }
 
 /**
- * Classes columns one after the other, each in a thread while the next is being read: memory holds as many columns as there are threads.
+ * Classes columns one after the other, each in a thread while the next is being fetched as it is stored: memory holds as many columns as there are
+ * threads.
  */
 export async function classCharacteristics(
   sequelize: Sequelize,
@@ -61,34 +63,30 @@ export async function classCharacteristics(
   const counted = shared(asked.counted);
   const classed: Classed['classed'][number][] = [];
   const unusable: Barred[] = [];
-  let next = 0;
   let done = 0;
-  const lane = async (): Promise<void> => {
-    for (let position = next++; position < asked.columns.length; position = next++) {
-      control.signal.throwIfAborted();
-      const defined = asked.columns[position];
-      const source = await openSample(sequelize, asked.sampleId, [defined.column]);
-      const column = source.column(defined.column);
-      if (!column) throw new Error(`The sample has no column ${defined.column}`);
-      const result = await runInThread(
-        'binning.class',
-        {
-          defined: { column: defined.column, kind: defined.kind, special: defined.special },
-          column,
-          data: asked.data,
-          counted,
-          constraints: asked.earlier.get(defined.column)?.constraints ?? asked.constraints,
-          earlier: asked.earlier.get(defined.column)?.edits ?? [],
-          months: asked.months,
-        },
-        { signal: control.signal },
-      );
-      if ('unusable' in result) unusable.push({ column: defined.column, reason: result.unusable });
-      else classed.push({ ...result, column: defined.column, kind: defined.kind, position });
-      control.onDone(++done);
-    }
-  };
-  await Promise.all(Array.from({ length: Math.min(threadCount(), asked.columns.length) }, lane));
+  const { readingId, positions } = await findStored(sequelize, asked.sampleId);
+  await inTurn([...asked.columns.entries()], async ([position, defined]) => {
+    control.signal.throwIfAborted();
+    const stored = positions.get(defined.column);
+    if (stored === undefined) throw new Error(`The sample has no column ${defined.column}`);
+    const contents = await readContents(sequelize, readingId, stored);
+    const result = await runInThread(
+      'binning.class',
+      {
+        defined: { column: defined.column, kind: defined.kind, special: defined.special },
+        contents,
+        data: asked.data,
+        counted,
+        constraints: asked.earlier.get(defined.column)?.constraints ?? asked.constraints,
+        earlier: asked.earlier.get(defined.column)?.edits ?? [],
+        months: asked.months,
+      },
+      { signal: control.signal, transfer: contents.map(({ buffer }) => buffer) },
+    );
+    if ('unusable' in result) unusable.push({ column: defined.column, reason: result.unusable });
+    else classed.push({ ...result, column: defined.column, kind: defined.kind, position });
+    control.onDone(++done);
+  });
   classed.sort((a, b) => a.position - b.position);
   return { classed, unusable };
 }
