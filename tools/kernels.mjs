@@ -1,7 +1,7 @@
 #!/usr/bin/env node
 /**
- * Compiles the kernels of libs/numeric/engine from AssemblyScript and writes them as a TypeScript module, so that whatever reads TypeScript
- * (the bundlers, tsx, vitest) finds them. The module is committed; a test compiles again and compares.
+ * Compiles the kernels from AssemblyScript and writes them as TypeScript modules, so that whatever reads TypeScript (the bundlers, tsx, vitest) finds
+ * them: the solver's (libs/numeric/engine) and that of keyed hashes (server/src/profiling). The modules are committed; tests compile again and compare.
  *
  *   node tools/kernels.mjs
  */
@@ -10,52 +10,57 @@ import * as path from 'node:path';
 import { fileURLToPath } from 'node:url';
 import { ROOT } from './install.mjs';
 
-const folder = path.join(ROOT, 'libs/numeric/engine/kernels');
+const numeric = 'libs/numeric/engine/kernels';
+const hashing = 'server/src/profiling/sha256';
 
-/** The text of the module. @throws with the compiler's messages */
-export async function kernelModule() {
+/** The compiled module in base64. @throws with the compiler's messages */
+async function compile(folder, source, more = []) {
   const { default: asc } = await import('assemblyscript/asc');
-  const compile = async (...more) => {
-    const written = new Map();
-    const { error, stderr } = await asc.main(
-      [
-        'kernels.assembly.ts',
-        '--outFile',
-        'out.wasm',
-        '-O3',
-        '--runtime',
-        'stub',
-        '--noAssert',
-        '--importMemory',
-        '--enable',
-        'simd',
-        '--maximumMemory',
-        '65536',
-        ...more,
-      ],
-      {
-        readFile: (name) => (fs.existsSync(path.join(folder, name)) ? fs.readFileSync(path.join(folder, name), 'utf8') : null),
-        writeFile: (name, contents) => void written.set(name, contents),
-        listFiles: () => [],
+  const written = new Map();
+  const { error, stderr } = await asc.main(
+    [source, '--outFile', 'out.wasm', '-O3', '--runtime', 'stub', '--noAssert', '--importMemory', '--enable', 'simd', ...more],
+    {
+      readFile: (name) => {
+        const file = path.join(ROOT, folder, name);
+        return fs.existsSync(file) ? fs.readFileSync(file, 'utf8') : null;
       },
-    );
-    if (error) throw new Error(stderr.toString() || error.message);
-    return Buffer.from(written.get('out.wasm')).toString('base64');
-  };
-  const lines = (text) =>
-    text
-      .match(/.{1,120}/g)
-      .map((line) => `  '${line}',`)
-      .join('\n');
+      writeFile: (name, contents) => void written.set(name, contents),
+      listFiles: () => [],
+    },
+  );
+  if (error) throw new Error(stderr.toString() || error.message);
+  return Buffer.from(written.get('out.wasm')).toString('base64');
+}
+
+const lines = (text) =>
+  text
+    .match(/.{1,120}/g)
+    .map((line) => `  '${line}',`)
+    .join('\n');
+
+/** The text of the solver's module. */
+export async function kernelModule() {
+  const most = ['--maximumMemory', '65536'];
+  const shared = ['--sharedMemory', '--enable', 'threads'];
   return [
     '/** Written by tools/kernels.mjs from kernels.assembly.ts: the kernels in WebAssembly, base64. Not to be edited. */',
-    `export const KERNELS = [\n${lines(await compile())}\n].join('');`,
+    `export const KERNELS = [\n${lines(await compile(numeric, 'kernels.assembly.ts', most))}\n].join('');`,
     '/** The same for memory that threads share. */',
-    `export const SHARED_KERNELS = [\n${lines(await compile('--sharedMemory', '--enable', 'threads'))}\n].join('');`,
+    `export const SHARED_KERNELS = [\n${lines(await compile(numeric, 'kernels.assembly.ts', [...most, ...shared]))}\n].join('');`,
+    '',
+  ].join('\n');
+}
+
+/** The text of the module of keyed hashes. */
+export async function hashModule() {
+  return [
+    '/** Written by tools/kernels.mjs from sha256.assembly.ts: the kernel in WebAssembly, base64. Not to be edited. */',
+    `export const SHA256 = [\n${lines(await compile(hashing, 'sha256.assembly.ts'))}\n].join('');`,
     '',
   ].join('\n');
 }
 
 if (process.argv[1] && fs.realpathSync(process.argv[1]) === fileURLToPath(import.meta.url)) {
-  fs.writeFileSync(path.join(folder, 'bytes.ts'), await kernelModule());
+  fs.writeFileSync(path.join(ROOT, numeric, 'bytes.ts'), await kernelModule());
+  fs.writeFileSync(path.join(ROOT, hashing, 'bytes.ts'), await hashModule());
 }

@@ -1,6 +1,6 @@
 import type { CodedColumn } from '../reading/plain/column-coder';
 import { type PackedColumn, packTexts, textsOfCoded } from '../storage/packedSegment';
-import { type KeyedHash, hashBytes } from './keyed-hash';
+import { type KeyedHash, hashBytes } from './sha256/keyed-hash';
 
 /** A coded column of texts that identify people with a keyed hash in place of each; texts that stand for missing stay as they are. */
 export function hashColumn(column: CodedColumn, key: KeyedHash, missing: ReadonlySet<string>): PackedColumn {
@@ -24,5 +24,6 @@ export function hashColumn(column: CodedColumn, key: KeyedHash, missing: Readonl
     }
     begins[code + 1] = at;
   }
+  key.finish();
   return { rows: column.rows, cells: column.cells, style: null, texts: { size, bytes: hashed, places: begins } };
 }

@@ -175,6 +175,12 @@ function merge(
   others: readonly (Counted & { goods: number; bads: number; value: number })[],
   style: NumberStyle,
 ): (CountedNumbers & { goods: Float64Array; bads: Float64Array }) | null {
+  if (others.length === 0) {
+    // Different whole numbers below 10^9 are different values: nothing is to be put in order.
+    const values = new Float64Array(length);
+    for (let place = 0; place < length; place++) values[place] = valueOf(wholes[place], style);
+    return { length, values, counts, goods, bads, text: (place) => spell(wholes[place], style) };
+  }
   const total = length + others.length;
   const [values, allCounts, allGoods, allBads] = Array.from({ length: 4 }, () => new Float64Array(total));
   const places = new Int32Array(total);

@@ -68,16 +68,21 @@ function countInPlace(wholes: Int32Array, outcome: OutcomeCodes | null, smallest
   return result;
 }
 
+/** Numbers closer together than this leave room in 32 bits for what is known of the outcome. */
+const packedRange = 2 ** 30;
+
 function countSorted(wholes: Int32Array, outcome: OutcomeCodes | null, smallest: number, range: number): SortedCounts {
+  // The outcome goes along in the low bits, which are not sorted by: 1 good, 0 bad, 2 neither.
+  const known = outcome !== null && range < packedRange;
+  if (outcome !== null && !known) return countFarApart(wholes, outcome);
+  const bits = known ? 2 : 0;
   const rows = wholes.length;
   let keys = new Uint32Array(rows);
-  let known = new Uint8Array(rows).fill(255);
-  if (outcome) known.set(outcome.subarray(0, rows));
-  for (let row = 0; row < rows; row++) keys[row] = wholes[row] - smallest;
-  let otherKeys = new Uint32Array(rows);
-  let otherKnown = new Uint8Array(rows);
+  if (known) for (let row = 0; row < rows; row++) keys[row] = ((wholes[row] - smallest) << 2) | Math.min(2, outcome[row]);
+  else for (let row = 0; row < rows; row++) keys[row] = wholes[row] - smallest;
+  let others = new Uint32Array(rows);
   const starts = new Uint32Array(2048);
-  for (let shift = 0; shift < 32 && range >= 2 ** shift; shift += 11) {
+  for (let shift = bits; shift < 32 && range >= 2 ** (shift - bits); shift += 11) {
     starts.fill(0);
     for (let row = 0; row < rows; row++) starts[(keys[row] >>> shift) & 2047]++;
     for (let digit = 0, sum = 0; digit < 2048; digit++) {
@@ -87,21 +92,40 @@ function countSorted(wholes: Int32Array, outcome: OutcomeCodes | null, smallest:
     }
     for (let row = 0; row < rows; row++) {
       const key = keys[row];
-      const place = starts[(key >>> shift) & 2047]++;
-      otherKeys[place] = key;
-      otherKnown[place] = known[row];
+      others[starts[(key >>> shift) & 2047]++] = key;
     }
-    [keys, otherKeys] = [otherKeys, keys];
-    [known, otherKnown] = [otherKnown, known];
+    [keys, others] = [others, keys];
   }
   let length = 1;
-  for (let row = 1; row < rows; row++) if (keys[row] !== keys[row - 1]) length++;
+  for (let row = 1; row < rows; row++) if (keys[row] >>> bits !== keys[row - 1] >>> bits) length++;
   const result = empty(length);
-  for (let row = 0, place = -1; row < rows; row++) {
-    if (row === 0 || keys[row] !== keys[row - 1]) result.wholes[++place] = keys[row] + smallest;
+  for (let row = 0, place = -1, last = -1; row < rows; row++) {
+    const whole = keys[row] >>> bits;
+    if (whole !== last) result.wholes[++place] = whole + smallest;
+    last = whole;
     result.counts[place]++;
-    if (known[row] === 1) result.goods[place]++;
-    else if (known[row] === 0) result.bads[place]++;
+    if (!known) continue;
+    const code = keys[row] & 3;
+    if (code === 1) result.goods[place]++;
+    else if (code === 0) result.bads[place]++;
   }
   return result;
+}
+
+/** Numbers from one end of what can be kept to the other: each half alone, the outcome with it. */
+function countFarApart(wholes: Int32Array, outcome: OutcomeCodes): SortedCounts {
+  const halves = [(whole: number): boolean => whole < 0, (whole: number): boolean => whole >= 0].map((belongs) => {
+    const rows = Uint32Array.from(wholes.keys()).filter((row) => belongs(wholes[row]));
+    return sortCounts(Int32Array.from(rows, (row) => wholes[row]), Uint8Array.from(rows, (row) => outcome[row]));
+  }); // prettier-ignore
+  const joined = empty(halves[0].length + halves[1].length);
+  let at = 0;
+  for (const half of halves) {
+    joined.wholes.set(half.wholes, at);
+    joined.counts.set(half.counts, at);
+    joined.goods.set(half.goods, at);
+    joined.bads.set(half.bads, at);
+    at += half.length;
+  }
+  return joined;
 }

@@ -1,5 +1,5 @@
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
-import { KeyedHash } from '../profiling/keyed-hash';
+import { KeyedHash } from '../profiling/sha256/keyed-hash';
 import type { Personal } from '../profiling/personal';
 import { hashColumn } from '../profiling/hash-column';
 import { personalInSegment } from '../profiling/personal-in-segment';

@@ -78,6 +78,11 @@ export class ThreadPool {
     });
   }
 
+  /** Starts the threads that are not there yet, ahead of need. */
+  warm(): void {
+    while (!this.closed && this.threads.size < this.size) this.start().worker.unref();
+  }
+
   async close(): Promise<void> {
     this.closed = true;
     for (const item of this.waiting.splice(0)) item.reject(new Error('The thread pool is closed'));

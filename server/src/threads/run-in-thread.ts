@@ -24,14 +24,20 @@ export async function runInThread<Name extends TaskName>(
   payload: TaskPayload<Name>,
   options: TaskOptions & { readonly lane?: Lane } = {},
 ): Promise<TaskResult<Name>> {
-  const lane = options.lane ?? 'numbers';
+  return (await poolOf(options.lane ?? 'numbers').run(name, payload, options)) as TaskResult<Name>;
+}
+
+function poolOf(lane: Lane): ThreadPool {
   let pool = pools.get(lane);
   if (!pool) {
     pool = lane === 'passwords' ? new ThreadPool(1, 256) : new ThreadPool(settings.count, settings.memoryMb);
     pools.set(lane, pool);
   }
-  return (await pool.run(name, payload, options)) as TaskResult<Name>;
+  return pool;
 }
+
+/** Starts all threads for numbers, where work for each of them is about to come. */
+export const warmThreads = (): void => poolOf('numbers').warm();
 
 /** How many tasks of numbers can run at once: what a batch is cut by. */
 export const threadCount = (): number => settings.count;

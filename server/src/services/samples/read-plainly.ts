@@ -8,7 +8,7 @@ import { type RecordsOfSegment, splitRecords } from '../../reading/plain/split-r
 import { segmentRows, storeContents } from '../../storage/columnStore';
 import { readRawFile } from '../../storage/rawFiles';
 import type { CodeAnswer } from '../../threads/code-segment';
-import { runInThread, threadCount } from '../../threads/run-in-thread';
+import { runInThread, threadCount, warmThreads } from '../../threads/run-in-thread';
 import type { ReadRows, Reading } from './read-rows';
 
 /** Fields of a segment after the first: with 100 columns half as many rows as the first has. */
@@ -34,6 +34,7 @@ export async function readPlainly(reading: Reading, readingId: string): Promise<
     signal,
     onProgress: ({ bytes }) => reading.progress(bytes),
   });
+  warmThreads();
   const seed = randomInt(1, 0x7fff_ffff);
   const duplicates = new DuplicateRows();
   let personal: readonly (Personal | null)[] | null = null;
