@@ -1,22 +1,10 @@
-import { type ChildProcess, spawn } from 'node:child_process';
-import { closeSync, openSync, readFileSync, readSync } from 'node:fs';
-import { join } from 'node:path';
-import { fileURLToPath } from 'node:url';
 import { Client } from 'pg';
 import supertest from 'supertest';
 import type { Run } from '@tallystone/contracts/runs/schema';
-import { readConfig } from '../../../server/src/config/environment';
-import { openContext } from '../../../server/src/context';
-import { inTransaction } from '../../../server/src/database/transaction';
-import { createLog } from '../../../server/src/logging/log';
-import { migrate } from '../../../server/src/migrations/migrate';
-import { hashPassword } from '../../../server/src/services/passwords/prepare';
-import { createPerson } from '../../../server/src/services/people/create';
-import { stopThreads } from '../../../server/src/threads/run-in-thread';
-import { ensureKeys } from '../../../tools/keys.mjs';
 import type { PostgresAddresses } from '../../../tools/postgres.mjs';
-import { Visitor, testPassword } from '../../support/intake';
-import { patchUpload, peakMemoryMiB } from '../../support/server-process';
+import { Visitor } from '../../support/intake';
+import { peakMemoryMiB } from '../../support/server-process';
+import { cpuSeconds, endService, prepareProduct, startService, uploadFile } from '../product';
 
 export interface OurTimes {
   /** From the start of reading to where every column is stored and the profile begins. */
@@ -44,9 +32,6 @@ interface Given {
   readonly say: (line: string) => void;
 }
 
-const piece = 8 * 1024 * 1024;
-const root = fileURLToPath(new URL('../../..', import.meta.url));
-
 /** The built product in two processes, a web server and a worker: one file through both. */
 export async function timeOurs({
   addresses,
@@ -59,26 +44,9 @@ export async function timeOurs({
   profileFolder,
   say,
 }: Given): Promise<OurTimes> {
-  const environment = {
-    DATABASE_URL: addresses.appUrl,
-    TALLYSTONE_DATA: data,
-    TALLYSTONE_KEYS: ensureKeys(data),
-    LOG_LEVEL: process.env.BENCH_LOG_LEVEL ?? 'error',
-    PORT: '0',
-  };
-  await migrate(addresses.ownerUrl, addresses.appUrl);
-  const email = 'marian@saltmarsh.example';
-  const config = readConfig(environment);
-  const context = await openContext(config, createLog(config.logLevel));
-  const passwordHash = await hashPassword(context, testPassword);
-  const person = await inTransaction(context.sequelize, (tx) =>
-    createPerson(tx, { name: 'marian', email, passwordHash, roles: ['modeller'], by: 'set-up' }),
-  );
-  await context.close();
-  await stopThreads();
-
-  const web = await start('web', environment, []);
-  const worker = await start(
+  const { environment, people } = await prepareProduct(addresses, data, { marian: ['modeller'] });
+  const web = await startService('web', environment);
+  const worker = await startService(
     'worker',
     environment,
     profileFolder === null ? [] : ['--cpu-prof', `--cpu-prof-dir=${profileFolder}`],
@@ -86,11 +54,11 @@ export async function timeOurs({
   const database = new Client({ connectionString: addresses.ownerUrl });
   await database.connect();
   try {
-    const modeller = new Visitor(supertest.agent(web.url), person.id);
-    await modeller.enter(email);
+    const modeller = new Visitor(supertest.agent(web.url), people.marian.id);
+    await modeller.enter(people.marian.email);
     const modelId = await modeller.model();
     const { headers } = await modeller.beginUpload(modelId, bytes).expect(201);
-    await upload(new URL(headers.location, web.url).href, path, modeller);
+    await uploadFile(new URL(headers.location, web.url).href, path, modeller);
     const { body } = await modeller.get(`/api/models/${modelId}/samples`).expect(200);
     const [sample] = body.samples as { id: string; sha256: string }[];
     if (sample.sha256 !== sha256) throw new Error('The file that arrived is not the one that was sent');
@@ -128,7 +96,7 @@ export async function timeOurs({
     };
   } finally {
     await database.end();
-    await Promise.all([end(web.process), end(worker.process)]);
+    await Promise.all([endService(web.process), endService(worker.process)]);
   }
 }
 
@@ -146,52 +114,4 @@ async function followRun(database: Client, id: string): Promise<Date | null> {
     if (run.state !== 'queued' && run.state !== 'running') return profiling;
     await new Promise((resolve) => setTimeout(resolve, 50));
   }
-}
-
-async function upload(url: string, path: string, visitor: Visitor): Promise<void> {
-  const file = openSync(path, 'r');
-  const buffer = Buffer.alloc(piece);
-  for (let offset = 0; ;) {
-    const count = readSync(file, buffer, 0, piece, offset);
-    if (count === 0) break;
-    const status = await patchUpload(url, offset, buffer.subarray(0, count), visitor.credentials());
-    if (status !== 204) throw new Error(`The upload was answered with ${status}`);
-    offset += count;
-  }
-  closeSync(file);
-}
-
-function start(
-  service: 'web' | 'worker',
-  environment: Record<string, string>,
-  flags: readonly string[],
-): Promise<{ process: ChildProcess; url: string }> {
-  return new Promise((resolve, reject) => {
-    const child = spawn(process.execPath, [...flags, join(root, 'dist/server/main.js'), `--services=${service}`], {
-      cwd: root,
-      env: { ...process.env, ...environment, NODE_ENV: 'production' },
-      stdio: ['ignore', 'inherit', 'inherit', 'ipc'],
-      // A session of its own, as a service has and PostgreSQL too: Linux shares a busy machine out by sessions.
-      detached: true,
-    });
-    child.once('message', (said: { type: string; url?: string; message?: string }) =>
-      said.type === 'ready'
-        ? resolve({ process: child, url: (said.url ?? '').replace('localhost', '127.0.0.1').replace(/\/$/, '') })
-        : reject(new Error(said.message)),
-    );
-    child.once('exit', (code) => reject(new Error(`The ${service} ended with ${code}`)));
-  });
-}
-
-function end(child: ChildProcess): Promise<void> {
-  return new Promise((resolve) => {
-    child.once('exit', () => resolve());
-    child.kill('SIGTERM');
-  });
-}
-
-/** User and system time of a process so far (Linux's /proc, in hundredths of a second). */
-function cpuSeconds({ pid }: ChildProcess): number {
-  const fields = readFileSync(`/proc/${pid}/stat`, 'utf8').split(') ')[1].split(' ');
-  return (Number(fields[11]) + Number(fields[12])) / 100;
 }
