@@ -5,6 +5,7 @@ import { PartitionBalance } from './balance';
 import { ColumnList } from './columns';
 import { ConfirmDraft, ConfirmReading, Definition, DefinitionList, Draft, DraftCheck, DraftContent } from './definition';
 import { ColumnLabels, Dictionary, DictionaryContent, DictionaryFile } from './dictionary';
+import { KeptSamples, NewErasure } from './erasure';
 import { ColumnQualityDetail, NewFlagAnswer, QualityColumnQuery, QualityState } from './quality';
 import { Preview, PreviewRequest } from './reading';
 import { DefinitionParams, Sample, SampleList, SampleListParams, SampleParams, UploadParams } from './schema';
@@ -214,4 +215,20 @@ export const readColumnLabels = defineEndpoint({
   summary: 'How the columns of a sample are called',
   params: ofDefinition,
   response: ColumnLabels,
+});
+
+export const listKeptSamples = defineEndpoint({
+  method: 'GET',
+  path: `${ofModel}/kept-samples`,
+  summary: 'What is kept of applicants in a model: files, dates and what rests on them, no value of any row',
+  params: SampleListParams,
+  response: KeptSamples,
+});
+export const eraseSample = defineEndpoint({
+  method: 'POST',
+  path: `${ofSample}/erasure`,
+  summary: 'Erase the rows of a sample for good, with the reason; what was counted stays',
+  params: SampleParams,
+  body: NewErasure,
+  response: 'nothing',
 });

@@ -28,4 +28,5 @@ export const sampleEvents = [
   recordEvent('sample.dictionary-saved', 'sample', {
     after: z.strictObject({ columns: z.array(z.string()), from: z.enum(['page', 'file']) }),
   }),
+  recordEvent('sample.erased', 'sample', { before: File, reason: z.string() }),
 ] as const;

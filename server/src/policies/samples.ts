@@ -1,7 +1,8 @@
 import type { SampleAbility } from '@tallystone/contracts/samples/abilities';
 import type { Actor } from '../models/person';
 import { type Decision, allowed, forbidden, hidden } from './decision';
-import { type ModelMembership, canDevelopModel, canReadModel } from './models';
+import { type ModelMembership, canDevelopModel, canReadModel, canSeeModel } from './models';
+import { holds } from './roles';
 
 /** What is known of a sample here. */
 export interface SampleStanding {
@@ -38,6 +39,16 @@ export function canDefineSample(person: Actor, sample: SampleStanding): Decision
 
 /** Flags of the report are answered, and a missing report made, by those who develop the model. */
 export const canAnswerFlag = (person: Actor, sample: SampleStanding): Decision => canDevelopModel(person, sample.model);
+
+/** What is kept, as metadata: an admin, who sees no more of a model, and whoever reads it. */
+export const canListKept = canSeeModel;
+
+/** Retention is the admin's: those who work with the rows do not decide how long they are there, and an admin sees none of them. */
+export function canEraseSample(person: Actor, sample: SampleStanding): Decision {
+  const seen = canSeeModel(person, sample.model);
+  if (!seen.allowed) return seen;
+  return holds(person, 'admin') ? allowed : forbidden('An admin erases the rows of a sample: retention is theirs.');
+}
 
 export function canDiscardSample(person: Actor, sample: SampleStanding): Decision {
   const develops = canDevelopModel(person, sample.model);

@@ -67,6 +67,13 @@ export const sampleRows: readonly AccessRow[] = [
   readsModel(`GET ${ofSample}/dictionary/file`),
   developsModel(`POST ${ofSample}/dictionary/file`),
   readsModel('GET /api/sample-definitions/:definitionId/labels'),
+  { route: 'GET /api/models/:modelId/kept-samples', own: { ...seen, modeller: 'yes' }, another: seen, nonexistent: everyRole(404) },
+  {
+    route: `POST ${ofSample}/erasure`,
+    own: { modeller: 403, validator: 403, compliance: 403, admin: 'yes', auditor: 403 },
+    another: { modeller: 404, validator: 403, compliance: 403, admin: 'yes', auditor: 403 },
+    nonexistent: everyRole(404),
+  },
   // Last of its kind: whoever may, discards the sample.
   { ...developsModel(`DELETE ${ofSample}`), ...spare },
 ];

@@ -14,6 +14,7 @@ import type { Challenge } from '../../replay/challenge';
 import { readRawFile } from '../../storage/rawFiles';
 import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
+import { refusalOfErased } from '../samples/erasure/erase';
 import { canonical } from '../specifications/build-specification';
 import { addEvidence } from '../versions/evidence';
 import { type FoundVersion, findVersion } from '../versions/find-version';
@@ -26,6 +27,8 @@ export async function startReplication(
   asked: { version: FoundVersion; person: Actor; method: ReplicationMethod; requestId: string },
 ): Promise<string> {
   const { version, person, method, requestId } = asked;
+  const erased = await refusalOfErased(context.sequelize, version.modelId, version.sampleId, tx);
+  if (erased) throw erased;
   const run = await startRun(context, tx, replicateVersionJob, {
     payload: { versionId: version.id, method },
     person,
