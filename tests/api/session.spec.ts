@@ -53,7 +53,7 @@ describe('sign-in', () => {
     expect((await agent.get('/api/session').expect(200)).body).toEqual({ user: null, abilities: [], demo: false });
     const { body } = await marian.get('/api/session').expect(200);
     expect(body.user).toMatchObject({ name: 'marian', email: 'marian@saltmarsh.example', roles: ['modeller'] });
-    expect(body.abilities).toEqual(['record.read', 'models.read', 'models.create', 'reviews.read', 'documents.read']);
+    expect(body.abilities).toEqual(['record.read', 'models.read', 'models.create', 'models.read-content', 'reviews.read', 'documents.read']);
   });
 
   it('changes the session id, so that one planted before is worth nothing', async () => {

@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import type { BinnedCharacteristic } from '../specification/types';
 import { OutOfTimeState } from '../out-of-time/schema';
+import { Erasure } from '../samples/erasure';
 import { binningAbilities, binningListAbilities } from './abilities';
 import { AskedConstraints, Bins, Constraints, Fine } from './bins';
 import { Edit, SentEdit } from './edits';
@@ -43,6 +44,8 @@ export const BinningSummary = z.object({
   from: z.object({ id: z.uuid(), name: z.string(), carried: z.int(), notCarried: z.int() }).nullable(),
   createdBy: z.string(),
   createdAt: z.string(),
+  /** Set once the rows of its sample were erased: it is read and no longer changed. */
+  erased: Erasure.nullable(),
 });
 export type BinningSummary = z.infer<typeof BinningSummary>;
 

@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { Erasure } from '../samples/erasure';
 import { fitAbilities, fitListAbilities } from './abilities';
 
 /** A value that came back as a double: JSON has no infinity or NaN, so what cannot be computed is null. */
@@ -145,6 +146,8 @@ export const FitSummary = z.object({
   problem: z.string().nullable(),
   createdBy: z.string(),
   createdAt: z.string(),
+  /** Set once the rows of its sample were erased: it is read and no longer gone on with. */
+  erased: Erasure.nullable(),
 });
 export const FitList = z.object({ fits: z.array(FitSummary), abilities: z.array(z.enum(fitListAbilities)) }).meta({ id: 'FitList' });
 

@@ -1,5 +1,5 @@
 /** Names of what a person may do that does not hang on one model. Sent with the session. */
-export const inventoryAbilities = ['models.read', 'models.create'] as const;
+export const inventoryAbilities = ['models.read', 'models.create', 'models.read-content'] as const;
 export type InventoryAbility = (typeof inventoryAbilities)[number];
 
 /** What a person may do with one model. The server says which; the client never decides by role. */

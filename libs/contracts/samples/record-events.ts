@@ -28,5 +28,9 @@ export const sampleEvents = [
   recordEvent('sample.dictionary-saved', 'sample', {
     after: z.strictObject({ columns: z.array(z.string()), from: z.enum(['page', 'file']) }),
   }),
-  recordEvent('sample.erased', 'sample', { before: File, reason: z.string() }),
+  recordEvent('sample.erased', 'sample', {
+    before: File,
+    detail: z.strictObject({ versions: z.int(), runsEnded: z.int() }),
+    reason: z.string(),
+  }),
 ] as const;

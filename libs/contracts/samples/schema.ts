@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import { ProblemItem } from '../problems/schema';
 import { sampleAbilities } from './abilities';
+import { Erasure } from './erasure';
 import { ReadingChoices } from './reading';
 
 /** Limits of one file. What is over them is refused with what was found. */
@@ -35,6 +36,8 @@ const summary = {
   runId: z.uuid().nullable(),
   receivedAt: z.string(),
   receivedFrom: z.string(),
+  /** Who erased its rows, when and why; null while they are there. */
+  erased: Erasure.nullable(),
 };
 export const SampleSummary = z.object(summary).meta({ id: 'SampleSummary' });
 export type SampleSummary = z.infer<typeof SampleSummary>;

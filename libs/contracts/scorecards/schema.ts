@@ -1,4 +1,5 @@
 import { z } from 'zod';
+import { Erasure } from '../samples/erasure';
 import { scorecardAbilities } from './abilities';
 
 const number = z.number();
@@ -97,13 +98,15 @@ export const Scorecard = z
     basePointsRounded: number,
     form: z.enum(['spread', 'base']),
     characteristics: z.array(ScorecardCharacteristic),
+    /** Set once the rows of its sample were erased: points stay, what is counted on rows is null, and there are no bands. */
+    erased: Erasure.nullable(),
     bands: z.array(ScoreBand),
     outOfTimeState: z.enum(['none', 'covered', 'opened']),
     /** Score distribution in even steps: goods and bads of development and hold-out. */
-    distribution: z.object({ from: number, step: number, goods: z.array(number), bads: z.array(number) }),
-    smallestScore: number,
-    largestScore: number,
-    rounding: RoundingCost,
+    distribution: z.object({ from: number, step: number, goods: z.array(number), bads: z.array(number) }).nullable(),
+    smallestScore: nullable,
+    largestScore: nullable,
+    rounding: RoundingCost.nullable(),
     /** Points with a coefficient against WOE, for the justification that submission needs. */
     againstWoe: z.array(z.string()),
     abilities: z.array(z.enum(scorecardAbilities)),

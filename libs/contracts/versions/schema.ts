@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import { versionAbilities, versionListAbilities } from './abilities';
 import { ModelState } from '../models/schema';
+import { Erasure } from '../samples/erasure';
 
 const number = z.number();
 const sha = z.string().regex(/^[0-9a-f]{64}$/);
@@ -101,6 +102,8 @@ export const VersionSummary = z.object({
   frozenAt: z.string(),
   /** Who must do something next, in words; null where nobody. */
   waitingFor: z.string().nullable(),
+  /** Set once the rows of its sample were erased: it is no longer replicable. */
+  erased: Erasure.nullable(),
 });
 
 export const Version = VersionSummary.extend({

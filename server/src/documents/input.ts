@@ -103,7 +103,7 @@ export const SourceFile = z.strictObject({
   sha256,
   broughtInBy: z.string(),
   broughtInAt: time,
-  /** False once the raw file has been erased; then `note` says when and why. */
+  /** False once the rows of the sample have been erased; then `note` says when, by whom and why. */
   replicable: z.boolean(),
   note: z.string().nullable(),
 });

@@ -86,7 +86,7 @@ export interface Ending {
 
 /** Ends a run and its attempt. The caller holds the run's row. */
 export async function endRun(
-  context: Context,
+  context: Pick<Context, 'sequelize'>,
   tx: Transaction,
   run: Held,
   handler: Handler | undefined,
@@ -114,11 +114,21 @@ export async function requeue(context: Context, tx: Transaction, run: Held, outc
   await emitRunEvent(context.sequelize, tx, run.id);
 }
 
-async function closeAttempt({ sequelize }: Context, tx: Transaction, run: Held, outcome: string): Promise<void> {
+async function closeAttempt({ sequelize }: Pick<Context, 'sequelize'>, tx: Transaction, run: Held, outcome: string): Promise<void> {
   await rows(
     sequelize,
     'UPDATE run_attempts SET ended_at = clock_timestamp(), outcome = $3 WHERE run_id = $1 AND number = $2 AND ended_at IS NULL RETURNING number',
     [run.id, run.attempt, outcome],
+    tx,
+  );
+}
+
+/** Locks every run that has not ended and reads the rows of this sample. */
+export function takeRunsOnRows({ sequelize }: Pick<Context, 'sequelize'>, tx: Transaction, sampleId: string): Promise<Held[]> {
+  return rows<Held>(
+    sequelize,
+    `SELECT ${columns} FROM runs WHERE sample_id = $1 AND state IN ('queued', 'running', 'cancelling') ORDER BY id FOR UPDATE`,
+    [sampleId],
     tx,
   );
 }

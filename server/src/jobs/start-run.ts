@@ -3,6 +3,7 @@ import type { z } from 'zod';
 import type { Context } from '../context';
 import { rows } from '../database/sql';
 import { Run } from '../models/run';
+import { type RowsPlace, holdRows } from '../storage/erasure';
 import { type JobDefinition, usualAttempts } from './definitions/job';
 import { within } from './queue';
 import { emitRunEvent } from './run-events';
@@ -17,6 +18,8 @@ export interface NewRun<Payload extends z.ZodType> {
   readonly entityId?: string;
   /** While a run of this kind with this key has not ended, starting another gives that one back. */
   readonly singleton?: string;
+  /** The sample whose rows it reads: held against erasure until the run is there, and the run ends when they are erased later. */
+  readonly rowsOf?: RowsPlace;
   readonly requestId?: string;
 }
 
@@ -24,6 +27,7 @@ export interface NewRun<Payload extends z.ZodType> {
  * Starts work: a run and its job, both within the caller's transaction, so that neither is there without the other and nothing starts
  * before the commit.
  *
+ * @throws Problem 409 where the rows it would read were erased
  * @returns the new run, or the one already under way for the same `singleton`
  * @example
  * const run = await startRun(context, tx, verifyRecordJob, { payload: {}, person, singleton: 'whole' });
@@ -35,14 +39,16 @@ export async function startRun<Payload extends z.ZodType>(
   asked: NewRun<Payload>,
 ): Promise<Run> {
   const payload = definition.payload.parse(asked.payload);
+  if ((definition.readsRows ?? false) !== (asked.rowsOf !== undefined)) throw new Error(`${definition.kind} is to be started with the sample it reads`);
+  const sampleId = asked.rowsOf === undefined ? null : await holdRows(context.sequelize, tx, asked.rowsOf);
   const [made] = await rows<{ id: string }>(
     context.sequelize,
-    `INSERT INTO runs (kind, queue, payload, most_attempts, person_id, model_id, entity, entity_id, singleton, request_id)
-     VALUES ($1, $2, $3::jsonb, $4, $5, $6, $7, $8, $9, $10)
+    `INSERT INTO runs (kind, queue, payload, most_attempts, person_id, model_id, entity, entity_id, singleton, request_id, sample_id)
+     VALUES ($1, $2, $3::jsonb, $4, $5, $6, $7, $8, $9, $10, $11)
      ON CONFLICT (kind, singleton) WHERE state IN ('queued', 'running', 'cancelling') DO NOTHING RETURNING id`,
     [
       definition.kind, definition.queue, JSON.stringify(payload), definition.mostAttempts ?? usualAttempts, asked.person.id, asked.modelId ?? null,
-      asked.entity ?? null, asked.entityId ?? null, asked.singleton ?? null, asked.requestId ?? null,
+      asked.entity ?? null, asked.entityId ?? null, asked.singleton ?? null, asked.requestId ?? null, sampleId,
     ], // prettier-ignore
     tx,
   );

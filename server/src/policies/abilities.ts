@@ -21,6 +21,7 @@ const abilities: readonly (readonly [Ability, (person: Actor) => boolean])[] = [
   ['record.verify', may(canVerifyRecord)],
   ['models.read', may(canListModels)],
   ['models.create', may(canCreateModel)],
+  ['models.read-content', looksInsideModels],
   ['reviews.read', looksInsideModels],
   ['documents.read', looksInsideModels],
 ];

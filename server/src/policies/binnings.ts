@@ -3,9 +3,10 @@ import type { BinningState } from '@tallystone/contracts/binnings/schema';
 import type { Actor } from '../models/person';
 import { type Decision, allowed, forbidden } from './decision';
 import { type ModelMembership, canDevelopModel, canReadModel } from './models';
+import { type RestsOnRows, withRows } from './rows';
 
 /** What is known of a binning here. */
-export interface BinningStanding {
+export interface BinningStanding extends RestsOnRows {
   readonly model: ModelMembership;
   readonly state: BinningState;
 }
@@ -14,9 +15,9 @@ export const canListBinnings = canReadModel;
 export const canStartBinning = canDevelopModel;
 export const canReadBinning = (person: Actor, binning: BinningStanding): Decision => canReadModel(person, binning.model);
 
-/** Bins are edited by the modellers of the model, once they are there. */
+/** Bins are edited by the modellers of the model, once they are there and as long as something can be fitted on them. */
 export function canEditBinning(person: Actor, binning: BinningStanding): Decision {
-  const develops = canDevelopModel(person, binning.model);
+  const develops = withRows(canDevelopModel(person, binning.model), binning);
   if (!develops.allowed) return develops;
   return binning.state === 'ready' ? allowed : forbidden('The characteristics have not been classed yet.');
 }

@@ -3,9 +3,10 @@ import type { Actor } from '../models/person';
 import { type Decision, allowed, forbidden, hidden } from './decision';
 import { type ModelMembership, canDevelopModel, canReadModel, canSeeModel } from './models';
 import { holds } from './roles';
+import { type RestsOnRows, withRows } from './rows';
 
 /** What is known of a sample here. */
-export interface SampleStanding {
+export interface SampleStanding extends RestsOnRows {
   readonly model: ModelMembership;
   readonly read: boolean;
   readonly definitions: number;
@@ -24,7 +25,7 @@ export function canSendUpload(person: Actor, model: ModelMembership, uploadedBy:
 
 /** Reading choices can be made anew until a definition rests on the columns. */
 export function canReadFile(person: Actor, sample: SampleStanding): Decision {
-  const develops = canDevelopModel(person, sample.model);
+  const develops = withRows(canDevelopModel(person, sample.model), sample);
   if (!develops.allowed) return develops;
   return sample.definitions === 0
     ? allowed
@@ -32,16 +33,19 @@ export function canReadFile(person: Actor, sample: SampleStanding): Decision {
 }
 
 export function canDefineSample(person: Actor, sample: SampleStanding): Decision {
-  const develops = canDevelopModel(person, sample.model);
+  const develops = withRows(canDevelopModel(person, sample.model), sample);
   if (!develops.allowed) return develops;
   return sample.read ? allowed : forbidden('The file has not been read yet. Confirm how it is read first.');
 }
 
 /** Flags of the report are answered, and a missing report made, by those who develop the model. */
-export const canAnswerFlag = (person: Actor, sample: SampleStanding): Decision => canDevelopModel(person, sample.model);
+export const canAnswerFlag = (person: Actor, sample: SampleStanding): Decision => withRows(canDevelopModel(person, sample.model), sample);
 
 /** What is kept, as metadata: an admin, who sees no more of a model, and whoever reads it. */
 export const canListKept = canSeeModel;
+
+/** What has arrived of files on their way is kept of applicants too; whose it is concerns retention alone. */
+export const seesUploadsOfOthers = (person: Actor): boolean => holds(person, 'admin');
 
 /** Retention is the admin's: those who work with the rows do not decide how long they are there, and an admin sees none of them. */
 export function canEraseSample(person: Actor, sample: SampleStanding): Decision {
@@ -51,7 +55,8 @@ export function canEraseSample(person: Actor, sample: SampleStanding): Decision 
 }
 
 export function canDiscardSample(person: Actor, sample: SampleStanding): Decision {
-  const develops = canDevelopModel(person, sample.model);
+  // The tombstone stays, so its sample does.
+  const develops = withRows(canDevelopModel(person, sample.model), sample);
   if (!develops.allowed) return develops;
   if (sample.definitions > 0) return forbidden('A confirmed definition rests on this sample: it stays.');
   return sample.busy ? forbidden('The file is being read. Cancel that first.') : allowed;

@@ -4,9 +4,10 @@ import type { VersionAct } from '@tallystone/contracts/versions/schema';
 import type { Actor } from '../models/person';
 import { type Decision, allowed, forbidden, hidden } from './decision';
 import { type ModelMembership, canDevelopModel, canReadModel } from './models';
+import { type RestsOnRows, haveRows } from './rows';
 
 /** Who has had a hand in a version, and where it stands: what separation of duties is judged by. */
-export interface VersionStanding {
+export interface VersionStanding extends RestsOnRows {
   readonly model: ModelMembership;
   readonly state: ModelState;
   /** Everyone who defined the sample, classed, fitted, chose the penalty, scaled, wrote texts, froze or submitted. */
@@ -78,8 +79,8 @@ function canSign(person: Actor, version: VersionStanding): Decision {
 export function canReplicate(person: Actor, version: VersionStanding): Decision {
   const seen = canReadVersion(person, version);
   if (!seen.allowed) return seen;
-  if (canDevelopModel(person, version.model).allowed) return allowed;
-  return person.roles.includes('validator') ? allowed : forbidden('Validators replicate; a modeller replicates their own models.');
+  if (canDevelopModel(person, version.model).allowed || person.roles.includes('validator')) return haveRows(version);
+  return forbidden('Validators replicate; a modeller replicates their own models.');
 }
 
 const open: ModelState[] = ['In development', 'Submitted', 'In validation'];

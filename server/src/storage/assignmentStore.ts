@@ -2,6 +2,7 @@ import { deflateRawSync, inflateRawSync } from 'node:zlib';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../database/sql';
 import { segmentRows } from './columnStore';
+import { refuseErased } from './erasure';
 
 /** What a confirmed definition says of each row. */
 export interface Assignment {
@@ -42,6 +43,7 @@ export async function storeAssignment(
   }
 }
 
+/** @throws Problem 409 where the rows of its sample were erased */
 export async function readAssignment(sequelize: Sequelize, definitionId: string, count: number): Promise<Assignment> {
   const partition = new Uint8Array(count);
   const outcome = new Uint8Array(count);
@@ -69,6 +71,9 @@ export async function readAssignment(sequelize: Sequelize, definitionId: string,
     filled.outcome === count &&
     filled.exclusion === count &&
     (weights === null || filled.weight === count);
-  if (!whole) throw new Error(`The rows of definition ${definitionId} are not stored as a whole`);
+  if (!whole) {
+    await refuseErased(sequelize, { definitionId });
+    throw new Error(`The rows of definition ${definitionId} are not stored as a whole`);
+  }
   return { partition, outcome, exclusion, weights };
 }

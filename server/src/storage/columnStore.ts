@@ -2,6 +2,7 @@ import type { Sequelize, Transaction } from 'sequelize';
 import { readBytes } from '../database/read-bytes';
 import { rows } from '../database/sql';
 import type { ColumnSource, TextColumn } from '../replay/source';
+import { refuseErased } from './erasure';
 import { joinStored } from './joinStored';
 import { type TextSegment, encodeSegment } from './segmentCoding';
 
@@ -52,14 +53,25 @@ export async function storeContents(
   }
 }
 
-/** One column as it is stored: its segments in order. */
-export const readContents = (sequelize: Sequelize, readingId: string, position: number): Promise<Uint8Array<ArrayBuffer>[]> =>
-  readBytes(sequelize, {
+/**
+ * One column as it is stored: its segments in order.
+ *
+ * @throws Problem 409 where the rows of its sample were erased
+ */
+export async function readContents(sequelize: Sequelize, readingId: string, position: number): Promise<Uint8Array<ArrayBuffer>[]> {
+  const contents = await readBytes(sequelize, {
     text: 'SELECT content FROM column_segments WHERE reading_id = $1 AND position = $2 ORDER BY segment',
     values: [readingId, position],
   });
+  if (contents.length === 0) await refuseErased(sequelize, { readingId });
+  return contents;
+}
 
-/** One whole column in memory, with one dictionary over all its segments. */
+/**
+ * One whole column in memory, with one dictionary over all its segments.
+ *
+ * @throws Problem 409 where the rows of its sample were erased
+ */
 export async function readStoredColumn(
   sequelize: Sequelize,
   readingId: string,
@@ -79,7 +91,7 @@ export interface StoredSample {
   readonly positions: ReadonlyMap<string, number>;
 }
 
-/** @throws when there is no such sample or it has not been read */
+/** @throws Problem 409 where its rows were erased; an error when there is no such sample or it has not been read */
 export async function findStored(sequelize: Sequelize, sampleId: string): Promise<StoredSample> {
   const [sample] = await rows<{ readingId: string | null; rows: number }>(
     sequelize,
@@ -87,6 +99,8 @@ export async function findStored(sequelize: Sequelize, sampleId: string): Promis
     [sampleId],
   );
   if (!sample?.readingId) throw new Error(`Sample ${sampleId} has not been read`);
+  // Whoever asks for no column of it would be told nothing.
+  await refuseErased(sequelize, { sampleId });
   const stored = await rows<{ position: number; name: string }>(
     sequelize,
     'SELECT position, name FROM sample_columns WHERE reading_id = $1 ORDER BY position',
@@ -103,7 +117,7 @@ export async function findStored(sequelize: Sequelize, sampleId: string): Promis
  * The columns of a sample that has been read, as the chain takes them. Names what is needed: each column stays in memory as long as the
  * source does. A name that the sample does not have gives no column.
  *
- * @throws when there is no such sample or it has not been read
+ * @throws Problem 409 where its rows were erased; an error when there is no such sample or it has not been read
  * @example
  * const source = await openSample(sequelize, sampleId, ['bad', 'age']);
  * const prepared = prepare(specification, source);

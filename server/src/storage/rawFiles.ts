@@ -4,6 +4,7 @@ import { deflateRaw, inflateRaw } from 'node:zlib';
 import type { Sequelize, Transaction } from 'sequelize';
 import { readBytes } from '../database/read-bytes';
 import { rows } from '../database/sql';
+import { refuseErased } from './erasure';
 
 /** A raw file is kept in pieces of at most this many bytes: what is sent again when a connection breaks. */
 export const chunkBytes = 8 * 1024 * 1024;
@@ -56,7 +57,11 @@ export async function storeChunk(
 /** Chunks that are fetched and opened while the one before them is used. */
 const chunksAhead = 2;
 
-/** The chunks of a file in order, opened, a few in memory at a time. */
+/**
+ * The chunks of a file in order, opened, a few in memory at a time.
+ *
+ * @throws Problem 409 where the rows of its sample were erased
+ */
 export async function* readChunks(
   sequelize: Sequelize,
   key: Buffer,
@@ -81,7 +86,11 @@ export async function* readChunks(
   for (let sequence = chunksAhead; ; sequence++) {
     signal?.throwIfAborted();
     const chunk = await coming.shift();
-    if (!chunk) return;
+    if (!chunk) {
+      // The end of the file, or of what is kept of it.
+      await refuseErased(sequelize, { rawFileId: fileId });
+      return;
+    }
     ask(sequence);
     yield chunk;
   }

@@ -48,6 +48,10 @@ export const routes: Routes = [
             path: 'documentation',
             loadChildren: () => import('./features/documentation/documentation.routes').then((m) => m.documentationRoutes),
           },
+          {
+            path: 'kept-samples',
+            loadChildren: () => import('./features/retention/retention.routes').then((m) => m.retentionRoutes),
+          },
           { path: '', loadChildren: () => import('./features/models/models.routes').then((m) => m.modelRoutes) },
         ],
       },

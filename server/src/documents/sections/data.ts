@@ -18,7 +18,7 @@ export function writeData(writer: Writer): void {
         'Raw file',
         sourceFile.replicable
           ? 'kept, encrypted: the version can be replicated'
-          : `no longer replicable${sourceFile.note === null ? '' : `: ${sourceFile.note}`}`,
+          : (sourceFile.note ?? 'no longer replicable'),
       ],
     ]);
     writer.text(

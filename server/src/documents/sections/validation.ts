@@ -20,6 +20,9 @@ export function writeValidation(writer: Writer): void {
     ]);
   }
   writer.heading('Replication');
+  if (input.sourceFile?.replicable === false) {
+    writer.text(`${input.sourceFile.note ?? 'No longer replicable.'} What is shown of a replication was made before.`);
+  }
   if (input.replications.length === 0) writer.notEvidenced('Replication from the stored raw file');
   for (const replication of input.replications) writeReplication(writer, replication);
 

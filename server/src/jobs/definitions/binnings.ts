@@ -6,6 +6,7 @@ import { defineJob } from './job';
 export const classBinningJob = defineJob({
   kind: 'binning.class',
   queue: 'long',
+  readsRows: true,
   payload: z.strictObject({ binningId: z.uuid() }),
   result: ClassingResult,
 });
@@ -14,6 +15,7 @@ export const classBinningJob = defineJob({
 export const correlateBinningJob = defineJob({
   kind: 'binning.correlate',
   queue: 'long',
+  readsRows: true,
   payload: z.strictObject({ binningId: z.uuid() }),
   result: CorrelationResult,
 });
@@ -22,6 +24,7 @@ export const correlateBinningJob = defineJob({
 export const completeBinningJob = defineJob({
   kind: 'binning.complete',
   queue: 'long',
+  readsRows: true,
   payload: z.strictObject({ binningId: z.uuid() }),
   result: CompletionResult,
 });

@@ -5,6 +5,7 @@ import { defineJob } from './job';
 export const fitPathJob = defineJob({
   kind: 'fit.path',
   queue: 'long',
+  readsRows: true,
   payload: z.strictObject({ fitId: z.uuid() }),
   result: z.object({ fitId: z.uuid(), penalties: z.int(), stoppedEarly: z.boolean() }),
 });

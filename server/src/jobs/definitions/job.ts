@@ -18,6 +18,8 @@ export interface JobDefinition<
   readonly result: Result;
   /** How many workers may be lost over it before the run is given up; an error that the work itself throws is not tried again. */
   readonly mostAttempts?: number;
+  /** It reads rows of a sample, so it is started with the sample it reads: an erasure ends it. */
+  readonly readsRows?: true;
 }
 
 /**

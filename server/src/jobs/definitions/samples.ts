@@ -8,6 +8,7 @@ import { defineJob } from './job';
 export const readSampleJob = defineJob({
   kind: 'sample.read',
   queue: 'long',
+  readsRows: true,
   payload: z.strictObject({ sampleId: z.uuid(), choices: ReadingChoices }),
   result: ReadingResult,
 });
@@ -16,6 +17,7 @@ export const readSampleJob = defineJob({
 export const confirmSampleJob = defineJob({
   kind: 'sample.confirm',
   queue: 'long',
+  readsRows: true,
   payload: z.strictObject({ sampleId: z.uuid(), revision: z.int() }),
   result: ConfirmationResult,
 });
@@ -24,6 +26,7 @@ export const confirmSampleJob = defineJob({
 export const reportQualityJob = defineJob({
   kind: 'sample.quality',
   queue: 'long',
+  readsRows: true,
   payload: z.strictObject({ definitionId: z.uuid() }),
   result: QualityResult,
 });

@@ -6,6 +6,7 @@ import { defineJob } from './job';
 export const freezeVersionJob = defineJob({
   kind: 'version.freeze',
   queue: 'long',
+  readsRows: true,
   payload: z.strictObject({ fitId: z.uuid(), choiceId: z.uuid(), note: z.string() }),
   result: FreezeResult,
 });
@@ -13,6 +14,7 @@ export const freezeVersionJob = defineJob({
 export const replicateVersionJob = defineJob({
   kind: 'version.replicate',
   queue: 'long',
+  readsRows: true,
   payload: z.strictObject({ versionId: z.uuid(), method: ReplicationMethod }),
   result: z.object({ versionId: z.uuid(), evidenceId: z.uuid(), matches: z.boolean() }),
 });
@@ -20,6 +22,7 @@ export const replicateVersionJob = defineJob({
 export const studyStabilityJob = defineJob({
   kind: 'version.stability',
   queue: 'long',
+  readsRows: true,
   payload: z.strictObject({ versionId: z.uuid(), ...NewStability.shape }),
   result: z.object({ versionId: z.uuid(), evidenceId: z.uuid() }),
 });

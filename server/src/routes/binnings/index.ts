@@ -64,7 +64,7 @@ export const binningRoutes: readonly Route[] = [
     find: ({ context, params }) => findBinning(context.sequelize, params.binningId),
     authorise: ({ person, subject }) => canReadBinning(person, subject),
     act: async ({ context, person, subject, requestId }) => {
-      if (subject.state === 'ready') {
+      if (subject.state === 'ready' && subject.erased === null) {
         await completeIfOld(context, { binningId: subject.id, modelId: subject.modelId, person, requestId });
       }
       return presentCharacteristics(context.sequelize, subject);

@@ -7,13 +7,13 @@ export const outOfTimeRoutes: readonly Route[] = [
   defineRoute(readOutOfTimeCover, {
     access: 'signed-in',
     find: ({ context, params }) => findCovered(context.sequelize, params.definitionId),
-    authorise: ({ person, subject }) => canReadOutOfTime(person, subject.model),
+    authorise: ({ person, subject }) => canReadOutOfTime(person, subject),
     act: ({ context, person, subject }) => readCover(context.sequelize, person, subject),
   }),
   defineRoute(openOutOfTime, {
     access: 'signed-in',
     find: ({ context, params, tx }) => findCovered(context.sequelize, params.definitionId, tx),
-    authorise: ({ person, subject }) => canOpenOutOfTime(person, subject.model),
+    authorise: ({ person, subject }) => canOpenOutOfTime(person, subject),
     act: async ({ context, person, subject, body, tx }) => {
       await open(context.sequelize, tx, person, subject, body.reason);
       return readCover(context.sequelize, person, subject, tx);

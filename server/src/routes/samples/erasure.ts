@@ -1,7 +1,8 @@
 import * as endpoints from '@tallystone/contracts/samples/endpoints';
 import { canEraseSample, canListKept } from '../../policies/samples';
 import { findModel } from '../../services/models/find-model';
-import { eraseSample, keptSamples } from '../../services/samples/erasure/erase';
+import { eraseSample } from '../../services/samples/erasure/erase';
+import { keptSamples } from '../../services/samples/erasure/kept';
 import { findSample } from '../../services/samples/find-sample';
 import { type Route, defineRoute } from '../http/route';
 
@@ -16,10 +17,11 @@ export function erasureRoutes(): Route[] {
     }),
     defineRoute(endpoints.eraseSample, {
       access: 'signed-in',
-      find: ({ context, params, tx }) => findSample(context.sequelize, params.modelId, params.sampleId, tx, true),
+      // Not locked: what runs on it is held first.
+      find: ({ context, params, tx }) => findSample(context.sequelize, params.modelId, params.sampleId, tx),
       authorise: ({ person, subject }) => canEraseSample(person, subject),
       async act({ context, person, subject, body, tx }) {
-        await eraseSample(context.sequelize, tx, person, subject, body.reason);
+        await eraseSample(context, tx, person, subject, body);
         return undefined;
       },
     }),

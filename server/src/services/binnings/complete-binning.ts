@@ -39,6 +39,7 @@ export async function completeIfOld(
       modelId,
       entity: 'binning',
       entityId: binningId,
+      rowsOf: { binningId },
       singleton: binningId,
       requestId,
     }),

@@ -39,6 +39,7 @@ export async function startCorrelation(
     modelId,
     entity: 'binning',
     entityId: binningId,
+    rowsOf: { binningId },
     singleton: binningId,
     requestId,
   });

@@ -3,6 +3,7 @@ import type { BinningState } from '@tallystone/contracts/binnings/schema';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
 import type { BinningStanding } from '../../policies/binnings';
+import { tombstoneOf } from '../../storage/erasure';
 
 /** A binning with everything its summary shows and its policies need. */
 export interface FoundBinning extends BinningStanding {
@@ -38,7 +39,8 @@ const select = `
          CASE WHEN b.ready_at IS NULL THEN r.problem ->> 'message' END AS problem,
          c.characteristics, c.included, e.edits, e."editsWithoutReason",
          CASE WHEN f.id IS NOT NULL THEN json_build_object('id', f.id, 'name', f.name, 'carried', k.carried, 'notCarried', k.not_carried) END AS "from",
-         ARRAY(SELECT person_id::text FROM model_members WHERE model_id = b.model_id) AS "memberIds"
+         ARRAY(SELECT person_id::text FROM model_members WHERE model_id = b.model_id) AS "memberIds",
+         ${tombstoneOf('d.sample_id')} AS erased
     FROM binnings b
     JOIN sample_definitions d ON d.id = b.definition_id
     JOIN samples s ON s.id = d.sample_id

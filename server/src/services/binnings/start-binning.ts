@@ -10,6 +10,7 @@ import type { Actor } from '../../models/person';
 import { invalidField } from '../../problems/problem';
 import type { FoundModel } from '../models/find-model';
 import { appendRecord } from '../record/append';
+import { refuseErased } from '../../storage/erasure';
 import { findDefinition } from '../samples/definitions';
 import { splitColumns } from './barred';
 import { type FoundBinning, findBinning } from './find-binning';
@@ -17,7 +18,7 @@ import { type FoundBinning, findBinning } from './find-binning';
 /**
  * Enters a binning and starts the run that classes its characteristics.
  *
- * @throws Problem 422 where the definition is not of this model or has nothing to class
+ * @throws Problem 422 where the definition is not of this model or has nothing to class, 409 where the rows of its sample were erased
  */
 export async function startBinning(
   context: Pick<Context, 'sequelize' | 'boss'>,
@@ -37,6 +38,7 @@ export async function startBinning(
   if (!definition || definition.modelId !== model.id) {
     throw invalidField('definitionId', 'no-such-definition', 'This model has no such confirmed sample. Choose another.');
   }
+  await refuseErased(context.sequelize, { definitionId: definition.id }, tx);
   const { taken, barred } = splitColumns(definition.content.columns);
   if (taken.length === 0) {
     throw invalidField(
@@ -83,6 +85,7 @@ export async function startBinning(
     modelId: model.id,
     entity: 'binning',
     entityId: id,
+    rowsOf: { definitionId: definition.id },
     requestId: asked.requestId,
   });
   await Binning.update({ runId: run.id }, { where: { id }, transaction: tx });

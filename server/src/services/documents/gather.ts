@@ -1,3 +1,4 @@
+import { noLongerReplicable } from '@tallystone/contracts/samples/erased-words';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
 import type { SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
 import type { ColumnLabels } from '@tallystone/contracts/samples/dictionary';
@@ -13,7 +14,6 @@ import { VersionRow } from '../../models/version';
 import type { VersionFigures } from '../../threads/freeze-version';
 import { findModel } from '../models/find-model';
 import { readCover, findCovered } from '../out-of-time/cover';
-import { erasuresOf, noLongerReplicable } from '../samples/erasure/erase';
 import { recordHead } from '../record/verify';
 import { actorOf } from '../people/actor-of';
 import type { ReplicationEvidence } from '../validation/replicate';
@@ -91,7 +91,6 @@ export async function gatherDocument(context: Context, versionId: string, person
     findCovered(sequelize, version.definitionId),
   ]);
   if (!model || !covered) throw new Error(`Version ${versionId} has lost its model or definition`);
-  const erasure = (await erasuresOf(sequelize, version.modelId)).get(version.sampleId);
   const cover = await readCover(sequelize, await actorOf(personId), covered);
   const specification = JSON.parse(frozen.specification) as Specification;
   const result = JSON.parse(frozen.result) as Result;
@@ -158,8 +157,8 @@ export async function gatherDocument(context: Context, versionId: string, person
       sha256: sample.content.sha256,
       broughtInBy: sample.content.receivedBy,
       broughtInAt: sample.content.receivedAt,
-      replicable: erasure === undefined,
-      note: erasure ? noLongerReplicable(erasure) : null,
+      replicable: version.erased === null,
+      note: version.erased && noLongerReplicable(version.erased),
     },
     waterfall: sample && waterfallOf(sample, specification, result),
     windows: sample && windowsOf(sample, specification),

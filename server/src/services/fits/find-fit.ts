@@ -4,6 +4,7 @@ import type { RunState } from '@tallystone/contracts/runs/schema';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
 import type { FitStanding } from '../../policies/fits';
+import { tombstoneOf } from '../../storage/erasure';
 
 /** A fit with everything its summary shows. */
 export interface FoundFit extends FitStanding {
@@ -59,7 +60,7 @@ const select = `
              FROM binning_characteristics c WHERE c.binning_id = f.binning_id AND c.included
          ) AS stale,
          ARRAY(SELECT person_id::text FROM model_members WHERE model_id = f.model_id) AS "memberIds",
-         r.state AS "runState", r.problem AS "runProblem", fp.fit_id IS NOT NULL AS fitted,
+         ${tombstoneOf('(SELECT sample_id FROM sample_definitions WHERE id = f.definition_id)')} AS erased, r.state AS "runState", r.problem AS "runProblem", fp.fit_id IS NOT NULL AS fitted,
          (fp.hold_out -> coalesce(ch.place, (fp.path -> 'crossValidation' ->> 'oneStandardError')::integer) ->> 'auc')::double precision AS "holdOutAuc",
          CASE WHEN ch.id IS NULL THEN NULL ELSE jsonb_build_object('id', ch.id, 'place', ch.place, 'lambda', ch.lambda, 'kept', ch.kept, 'rule', ch.rule,
            'reason', ch.reason, 'by', cp.name, 'byId', ch.chosen_by,

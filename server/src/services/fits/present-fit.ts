@@ -34,6 +34,7 @@ export function presentFitSummary(fit: FoundFit): FitSummary {
     problem: fit.problem,
     createdBy: fit.createdByName,
     createdAt: fit.createdAt.toISOString(),
+    erased: fit.erased,
   };
 }
 

@@ -11,6 +11,7 @@ import { startRun } from '../../jobs/start-run';
 import { Fit } from '../../models/fit';
 import type { Actor } from '../../models/person';
 import { Problem } from '../../problems/problem';
+import { rowsErased } from '../../problems/rows-erased';
 import { binningCharacteristics } from '../binnings/characteristics-of';
 import { findBinning } from '../binnings/find-binning';
 import type { FoundModel } from '../models/find-model';
@@ -23,7 +24,7 @@ import { type FoundFit, findFit, findFits } from './find-fit';
  * Takes the binning as it is now, writes the whole specification down and starts the run. The fit keeps that specification whatever
  * happens to the binning later.
  *
- * @throws Problem 422 with every setting that does not fit this binning
+ * @throws Problem 422 with every setting that does not fit this binning, 409 where the rows of its sample were erased
  */
 export async function startFit(
   context: Context,
@@ -33,6 +34,7 @@ export async function startFit(
   const { model, person, settings } = asked;
   const binning = await findBinning(context.sequelize, asked.binningId, tx);
   if (!binning || binning.modelId !== model.id) throw invalid([{ message: 'There is no such binning in this model. Choose another.', where: { field: 'binningId' } }]);
+  if (binning.erased) throw rowsErased(binning.erased);
   if (binning.state !== 'ready') throw invalid([{ message: 'This binning has not run to its end. Wait for it, or choose another.', where: { field: 'binningId' } }]);
   const definition = await findDefinition(context.sequelize, binning.definitionId, tx);
   if (!definition) throw new Error(`Binning ${binning.id} has no sample definition`);
@@ -80,6 +82,7 @@ export async function startFit(
     modelId: model.id,
     entity: 'fit',
     entityId: id,
+    rowsOf: { definitionId: binning.definitionId },
     requestId: asked.requestId,
   });
   await Fit.update({ runId: run.id }, { where: { id }, transaction: tx });

@@ -2,15 +2,16 @@ import type { OutOfTimeCover } from '@tallystone/contracts/out-of-time/schema';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
 import type { Actor } from '../../models/person';
-import { canOpenOutOfTime } from '../../policies/out-of-time';
+import { type CoverStanding, canOpenOutOfTime } from '../../policies/out-of-time';
 import { conflict } from '../../problems/problem';
+import { tombstoneOf } from '../../storage/erasure';
 import { type FoundModel, findModel } from '../models/find-model';
 import { appendRecord } from '../record/append';
 
 export { outOfTimeOpened, outOfTimeState } from './state';
 
 /** A sample definition as far as its cover needs it. */
-export interface CoveredDefinition {
+export interface CoveredDefinition extends CoverStanding {
   readonly id: string;
   readonly outOfTimeRows: number;
   readonly model: FoundModel;
@@ -22,14 +23,15 @@ export async function findCovered(
   definitionId: string,
   tx: Transaction | null = null,
 ): Promise<CoveredDefinition | null> {
-  const [found] = await rows<{ modelId: string; outOfTimeRows: number }>(
+  const [found] = await rows<{ modelId: string; outOfTimeRows: number; erased: CoverStanding['erased'] }>(
     sequelize,
-    `SELECT model_id AS "modelId", (counts #>> '{partitions,outOfTime,rows}')::int AS "outOfTimeRows" FROM sample_definitions WHERE id = $1`,
+    `SELECT model_id AS "modelId", (counts #>> '{partitions,outOfTime,rows}')::int AS "outOfTimeRows", ${tombstoneOf('sample_definitions.sample_id')} AS erased
+       FROM sample_definitions WHERE id = $1`,
     [definitionId],
     tx,
   );
   const model = found && (await findModel(sequelize, found.modelId, tx));
-  return model ? { id: definitionId, outOfTimeRows: found.outOfTimeRows, model } : null;
+  return model ? { id: definitionId, outOfTimeRows: found.outOfTimeRows, model, erased: found.erased } : null;
 }
 
 export async function readCover(
@@ -50,7 +52,7 @@ export async function readCover(
     definitionId: definition.id,
     state,
     openings: openings.map((opening) => ({ ...opening, at: opening.at.toISOString() })),
-    abilities: state !== 'none' && canOpenOutOfTime(person, definition.model).allowed ? ['open'] : [],
+    abilities: state !== 'none' && canOpenOutOfTime(person, definition).allowed ? ['open'] : [],
   };
 }
 

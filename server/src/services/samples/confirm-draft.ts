@@ -43,6 +43,7 @@ export async function confirmDraft(
     modelId: sample.modelId,
     entity: 'sample',
     entityId: sample.id,
+    rowsOf: { sampleId: sample.id },
     singleton: sample.id,
     requestId,
   });

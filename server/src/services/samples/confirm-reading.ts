@@ -49,6 +49,7 @@ export async function confirmReading(
     modelId: sample.modelId,
     entity: 'sample',
     entityId: sample.id,
+    rowsOf: { sampleId: sample.id },
     singleton: sample.id,
     requestId,
   });

@@ -3,6 +3,7 @@ import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
 import type { SampleStanding } from '../../policies/samples';
+import { tombstoneOf } from '../../storage/erasure';
 import { type FoundModel, findModel } from '../models/find-model';
 
 /** A sample with its model: what policies and services about it need. */
@@ -37,7 +38,7 @@ const select = `
          p.name AS "receivedFrom",
          (SELECT count(*)::int FROM sample_definitions d WHERE d.sample_id = s.id) AS definitions,
          (SELECT d.id FROM sample_definitions d WHERE d.sample_id = s.id ORDER BY d.number DESC LIMIT 1) AS "latestDefinitionId",
-         r.id AS "runId", r.kind AS "runKind"
+         r.id AS "runId", r.kind AS "runKind", ${tombstoneOf('s.id')} AS erased
     FROM samples s
     JOIN people p ON p.id = s.received_by
     LEFT JOIN LATERAL (

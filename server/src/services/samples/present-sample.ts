@@ -24,6 +24,7 @@ function summaryOf(sample: FoundSample): SampleSummary {
     runId: sample.runId,
     receivedAt: sample.receivedAt.toISOString(),
     receivedFrom: sample.receivedFrom,
+    erased: sample.erased,
   };
 }
 

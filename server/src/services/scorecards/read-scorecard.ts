@@ -33,11 +33,21 @@ export async function buildOnRows(sequelize: Sequelize, fit: FoundFit, loaded: L
   return { ...built, state };
 }
 
+/** What stays where the rows are gone: points hang on bins and coefficients alone, everything counted by score does not. */
+async function withoutRows(sequelize: Sequelize, fit: FoundFit) {
+  return { bands: [], distribution: null, smallestScore: null, largestScore: null, rounding: null, state: await outOfTimeState(sequelize, fit.definitionId) };
+}
+
+async function countedOnRows(sequelize: Sequelize, fit: FoundFit, loaded: LoadedScorecard) {
+  const { meanPointsAtCutOff: _used, ...built } = await buildOnRows(sequelize, fit, loaded);
+  return built;
+}
+
 /** @throws Problem 409 while no penalty is chosen */
 export async function readScorecard(sequelize: Sequelize, fit: FoundFit, person: Actor, known?: LoadedScorecard): Promise<Scorecard> {
   const loaded = known ?? (await loadScorecard(sequelize, fit));
   const points = pointsOfScorecard(loaded);
-  const { state, meanPointsAtCutOff: _used, ...built } = await buildOnRows(sequelize, fit, loaded);
+  const { state, ...built } = fit.erased ? await withoutRows(sequelize, fit) : await countedOnRows(sequelize, fit, loaded);
   const choice = fit.choice!;
   return {
     fitId: fit.id,
@@ -65,6 +75,7 @@ export async function readScorecard(sequelize: Sequelize, fit: FoundFit, person:
     ),
     ...built,
     outOfTimeState: state,
+    erased: fit.erased,
     againstWoe: loaded.kept.filter(({ coefficient }) => coefficient < 0).map(({ definition }) => definition.column),
     abilities: abilitiesOnScorecard(person, fit),
   };

@@ -21,7 +21,8 @@ export const applicantCaution =
  * Reasons: the characteristics furthest below the stated baseline, largest unrounded loss first, ties in the order of the specification,
  * only real losses, at most the stated number (governance.md of the design; common practice).
  *
- * @throws Problem 422 with every field that cannot be read, 409 while no penalty is chosen
+ * @throws Problem 422 with every field that cannot be read, 409 while no penalty is chosen, or where reasons are counted from the applicants at the cut-off
+ *   and their rows were erased
  */
 export async function scoreApplicant(sequelize: Sequelize, fit: FoundFit, applicant: Applicant): Promise<ScoredApplicant> {
   const loaded = await loadScorecard(sequelize, fit);

@@ -14,7 +14,6 @@ import type { Challenge } from '../../replay/challenge';
 import { readRawFile } from '../../storage/rawFiles';
 import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
-import { refusalOfErased } from '../samples/erasure/erase';
 import { canonical } from '../specifications/build-specification';
 import { addEvidence } from '../versions/evidence';
 import { type FoundVersion, findVersion } from '../versions/find-version';
@@ -27,14 +26,13 @@ export async function startReplication(
   asked: { version: FoundVersion; person: Actor; method: ReplicationMethod; requestId: string },
 ): Promise<string> {
   const { version, person, method, requestId } = asked;
-  const erased = await refusalOfErased(context.sequelize, version.modelId, version.sampleId, tx);
-  if (erased) throw erased;
   const run = await startRun(context, tx, replicateVersionJob, {
     payload: { versionId: version.id, method },
     person,
     modelId: version.modelId,
     entity: 'version',
     entityId: version.id,
+    rowsOf: { sampleId: version.sampleId },
     singleton: `${version.id} ${method}`,
     requestId,
   });

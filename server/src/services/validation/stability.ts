@@ -29,6 +29,7 @@ export async function startStability(
     modelId: version.modelId,
     entity: 'version',
     entityId: version.id,
+    rowsOf: { sampleId: version.sampleId },
     singleton: version.id,
     requestId,
   });

@@ -3,6 +3,7 @@ import type { Conclusion, VersionAct } from '@tallystone/contracts/versions/sche
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
 import type { VersionStanding } from '../../policies/versions';
+import { tombstoneOf } from '../../storage/erasure';
 
 /** One entry in the life of a version. */
 export interface FoundAct {
@@ -59,7 +60,7 @@ const select = `
          v.scores_sha256 AS "scoresSha256", v.code_version AS "codeVersion", v.fingerprint,
          (v.result::jsonb ->> 'kept')::int AS kept, (v.result::jsonb ->> 'intercept')::double precision AS intercept,
          (v.result::jsonb ->> 'lambda')::double precision AS lambda,
-         p.name AS "frozenBy", v.frozen_at AS "frozenAt",
+         p.name AS "frozenBy", v.frozen_at AS "frozenAt", ${tombstoneOf('d.sample_id')} AS erased,
          ARRAY(SELECT person_id::text FROM model_members WHERE model_id = v.model_id) AS "memberIds",
          ARRAY(
            SELECT v.frozen_by::text

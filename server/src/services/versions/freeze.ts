@@ -10,6 +10,7 @@ import { startRun } from '../../jobs/start-run';
 import type { Actor } from '../../models/person';
 import { VersionActRow, VersionRow, VersionTextsRow } from '../../models/version';
 import { Problem, conflict } from '../../problems/problem';
+import { rowsErased } from '../../problems/rows-erased';
 import type { FreezeAnswer } from '../../threads/freeze-version';
 import { runInThread } from '../../threads/run-in-thread';
 import { type FoundFit, findFit } from '../fits/find-fit';
@@ -46,6 +47,8 @@ export async function startFreezing(
   asked: { fit: FoundFit; person: Actor; note: string; requestId: string },
 ): Promise<string> {
   const { fit, person, note, requestId } = asked;
+  // Before what else stands in the way: it would be put right for nothing.
+  if (fit.erased) throw rowsErased(fit.erased);
   const obstacles = await obstaclesToFreezing(context, fit, tx);
   if (obstacles.length > 0) throw conflict('cannot-freeze', 'This scorecard cannot be frozen as it is.', obstacles);
   const run = await startRun(context, tx, freezeVersionJob, {
@@ -54,6 +57,7 @@ export async function startFreezing(
     modelId: fit.modelId,
     entity: 'fit',
     entityId: fit.id,
+    rowsOf: { definitionId: fit.definitionId },
     singleton: fit.id,
     requestId,
   });

@@ -1,3 +1,4 @@
+import { noLongerReplicable } from '@tallystone/contracts/samples/erased-words';
 import type { Result } from '@tallystone/contracts/result/types';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import type { Gate, GateItem, VersionTextKey, VersionTexts } from '@tallystone/contracts/versions/schema';
@@ -149,10 +150,12 @@ function concludeItems({ version, replications, matchingReplications }: Looked):
       detail:
         matchingReplications > 0
           ? `${matchingReplications} of ${replications} recorded.`
-          : replications === 0
+          : version.erased
+            ? `${replications === 0 ? 'None is recorded.' : `${replications} recorded, none of them both independent and matching.`} ${noLongerReplicable(version.erased)}`
+            : replications === 0
             ? 'None is recorded. Replicate from the stored raw file.'
             : `${replications} recorded, none of them both independent and matching. Replicate, and look at what differs.`,
-      path: `/models/${version.modelId}/validation/${version.id}`,
+      path: version.erased && matchingReplications === 0 ? null : `/models/${version.modelId}/validation/${version.id}`,
     },
   ];
 }

@@ -29,6 +29,7 @@ export function presentVersionSummary(version: FoundVersion): VersionSummary {
     frozenBy: version.frozenBy,
     frozenAt: version.frozenAt.toISOString(),
     waitingFor: waitingFor(version),
+    erased: version.erased,
   };
 }
 

@@ -4,6 +4,7 @@ import type { Model, ModelWork, WorkStep } from '@tallystone/contracts/models/sc
 import { firstValueFrom } from 'rxjs';
 import { tagged } from './http/etag';
 import { type Problem, asProblem } from './http/problem';
+import { Session } from './session';
 
 export type { Model, WorkStep };
 
@@ -18,6 +19,7 @@ export type { Model, WorkStep };
 @Injectable({ providedIn: 'root' })
 export class CurrentModel {
   private readonly http = inject(HttpClient);
+  private readonly session = inject(Session);
   private readonly value = signal<Model | null>(null);
   private readonly work = signal<readonly WorkStep[]>([]);
   private readonly failed = signal<Problem | null>(null);
@@ -48,7 +50,8 @@ export class CurrentModel {
     try {
       const [model, work] = await Promise.all([
         firstValueFrom(this.http.get<Model>(`/api/models/${id}`, { observe: 'response' })),
-        firstValueFrom(this.http.get<ModelWork>(`/api/models/${id}/work`)),
+        // How far the work has come is inside the model: an admin sees what the inventory says of it and no more.
+        this.session.can('models.read-content') ? firstValueFrom(this.http.get<ModelWork>(`/api/models/${id}/work`)) : { steps: [] },
       ]);
       if (this.wanted !== id) return;
       const { value, etag } = tagged(model);

@@ -34,7 +34,9 @@ import { WorksRule } from './works-rule';
             </p>
           }
         </div>
-        <ts-works-rule class="ts-no-print" [steps]="current.steps()" />
+        @if (!current.model() || current.can('read-content')) {
+          <ts-works-rule class="ts-no-print" [steps]="current.steps()" />
+        }
       </div>
       @if (current.model()) {
         <router-outlet />

@@ -7,7 +7,7 @@ import { stateTone } from './version-state';
 
 /** Columns that several lists of versions have. */
 export const versionColumns = {
-  state: { key: 'state', label: 'State', value: (row) => row.state },
+  state: { key: 'state', label: 'State', value: (row) => (row.erased ? `${row.state}, no longer replicable` : row.state) },
   waits: { key: 'waits', label: 'Waits for', value: (row) => row.waitingFor },
   fit: { key: 'fit', label: 'Fit', value: (row) => row.fitName },
   kept: { key: 'kept', label: 'Characteristics', kind: 'count', value: (row) => row.kept },
@@ -39,6 +39,9 @@ export const versionLink = (label: string): Column<VersionSummary> => ({
     <ts-table [caption]="caption()" [columns]="columns()" [rows]="versions()" [identify]="byId">
       <ng-template tsCell="state" [tsCellRows]="versions()" let-row>
         <ts-status [tone]="tone(row)">{{ row.state }}</ts-status>
+        @if (row.erased) {
+          <ts-status tone="ended">no longer replicable</ts-status>
+        }
       </ng-template>
     </ts-table>
   `,

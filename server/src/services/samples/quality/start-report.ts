@@ -17,6 +17,7 @@ export function startReport(
     modelId,
     entity: 'sample-definition',
     entityId: definitionId,
+    rowsOf: { definitionId },
     singleton: definitionId,
     requestId,
   });

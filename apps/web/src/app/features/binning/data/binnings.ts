@@ -129,10 +129,10 @@ export class Binnings {
     return firstValueFrom(this.http.post<OutOfTimeCover>(`/api/sample-definitions/${definitionId}/out-of-time`, { reason }));
   }
 
-  /** Confirmed definitions of the model's samples, latest first. */
+  /** Confirmed definitions of the model's samples whose rows are there, latest first. */
   async startingPoints(modelId: string): Promise<StartingPoint[]> {
     const { samples } = await firstValueFrom(this.http.get<SampleList>(`/api/models/${modelId}/samples`));
-    const defined = samples.filter((sample) => sample.definitions > 0);
+    const defined = samples.filter((sample) => sample.definitions > 0 && sample.erased === null);
     const lists = await Promise.all(
       defined.map((sample) =>
         firstValueFrom(this.http.get<DefinitionList>(`/api/models/${modelId}/samples/${sample.id}/definitions`)),

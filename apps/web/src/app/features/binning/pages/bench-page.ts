@@ -41,6 +41,7 @@ import { DecisionNotice } from '../../../ui/decision-notice';
 import { binWords, metric, moment, plural, woe, written } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
+import { Tombstone } from '../../../ui/tombstone';
 import { currentBins } from '../bench/history';
 import { Bench } from '../data/bench';
 import { Binnings, binningOf, characteristicsOf } from '../data/binnings';
@@ -74,6 +75,7 @@ import type { StaleAnswer, StaleQuestion } from '../ui/stale-dialog';
     PageHeader,
     Places,
     ProblemList,
+    Tombstone,
   ],
   providers: [Bench],
   host: { class: 'ts-page' },

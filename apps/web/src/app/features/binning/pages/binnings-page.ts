@@ -113,7 +113,7 @@ export class BinningsPage {
       sortable: true,
     },
     { key: 'state', label: 'State', value: (row) => stateWords[row.state] },
-    { key: 'sample', label: 'Sample', value: (row) => row.sample },
+    { key: 'sample', label: 'Sample', value: (row) => (row.erased ? `${row.sample}, rows erased` : row.sample) },
     { key: 'included', label: 'Included', kind: 'count', value: (row) => row.included },
     { key: 'characteristics', label: 'Classed', kind: 'count', value: (row) => row.characteristics },
     { key: 'edits', label: 'Edits', kind: 'count', value: (row) => row.edits },

@@ -17,6 +17,7 @@ import { CellTemplate, DenseTable, type TableSort } from '../../../ui/dense-tabl
 import { plural } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
+import { Tombstone } from '../../../ui/tombstone';
 import { RunProgress } from '../../../ui/run-progress';
 import { type CharacteristicList, type CharacteristicSummary, Binnings, binningOf, characteristicsOf } from '../data/binnings';
 import { asPart, filtered, intervalText, partWords, riskTrend, shownParts, warningsOf } from '../ui/characteristic-filter';
@@ -40,6 +41,7 @@ import type { ReclassAnswer, ReclassQuestion } from '../ui/reclass-dialog';
     OutOfTimeCover,
     PageHeader,
     ProblemList,
+    Tombstone,
     RunProgress,
   ],
   host: { class: 'ts-page' },
@@ -72,7 +74,7 @@ export class CharacteristicsPage {
   private readonly opened = computed(() => this.binning.hasValue() && this.binning.value().outOfTime === 'opened');
   /** Without an application date nothing can be told by month. */
   private readonly dated = computed(() => (this.all() ?? []).some(({ stability }) => stability.byMonth !== null));
-  protected readonly mayOpen = computed(() => this.current.can('develop'));
+  protected readonly mayOpen = computed(() => this.current.can('develop') && this.binning.hasValue() && this.binning.value().erased === null);
   protected readonly run = this.runs.run(() => (this.binning.hasValue() ? this.binning.value().runId : null));
   protected readonly all = computed(() => (this.list.hasValue() ? this.list.value().characteristics : null));
   protected readonly rows = computed(() => filtered(this.all() ?? [], this.part(), this.search() ?? ''));

@@ -17,6 +17,7 @@ import { type Column } from '../../../ui/column';
 import { CellTemplate, DenseTable, type TableSort } from '../../../ui/dense-table';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
+import { Tombstone } from '../../../ui/tombstone';
 import { DictionaryStore } from '../data/dictionary-store';
 import { DraftStore } from '../data/draft-store';
 import { type ColumnProfile, columnsOf, oneSample } from '../data/samples';
@@ -52,6 +53,7 @@ interface Row {
     ProblemList,
     SampleSteps,
     SaveStateNote,
+    Tombstone,
   ],
   template: `
     <div class="ts-stack">
@@ -67,6 +69,9 @@ interface Row {
         }
         <a matButton="filled" [routerLink]="['/models', modelId(), 'sample', sampleId(), 'definition']">Outcome and partition</a>
       </ts-page-header>
+      @if (sample.value()?.erased; as erased) {
+        <ts-tombstone [erased]="erased">Profiles stay, without values that fewer than five rows hold; roles and labels are read and no longer changed.</ts-tombstone>
+      }
       <ts-problems [error]="columns.error()" />
       <ts-problems [error]="draft.error()" />
       <ts-problems [error]="words.error()" next="Mend the file and import it again: nothing of it was taken." [limit]="60" />

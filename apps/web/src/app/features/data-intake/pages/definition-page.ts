@@ -16,6 +16,7 @@ import { moment, plural } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
+import { Tombstone } from '../../../ui/tombstone';
 import { DraftStore } from '../data/draft-store';
 import { type ColumnProfile, Samples, balanceOf, columnsOf, definitionsOf, oneSample } from '../data/samples';
 import { BalanceTable } from '../ui/balance-table';
@@ -49,6 +50,7 @@ import { WaterfallFigure } from '../ui/waterfall-figure';
     SampleSteps,
     SaveStateNote,
     SensitivityTable,
+    Tombstone,
     WaterfallFigure,
   ],
   templateUrl: './definition-page.html',

@@ -16,6 +16,7 @@ import { plural, share } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
+import { Tombstone } from '../../../ui/tombstone';
 import { type ColumnQuality, Samples, columnQualityOf, oneSample, qualityOf } from '../data/samples';
 import { plain } from '../ui/findings';
 import { type AskedAnswer, QualityFlags } from '../ui/quality-flags';
@@ -46,6 +47,7 @@ import { SampleSteps } from '../ui/sample-steps';
     QualityMonths,
     RunProgress,
     SampleSteps,
+    Tombstone,
   ],
   templateUrl: './quality-page.html',
   styleUrl: './quality-page.scss',

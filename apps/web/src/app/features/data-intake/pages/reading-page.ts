@@ -12,6 +12,7 @@ import { Ask } from '../../../ui/ask';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
+import { Tombstone } from '../../../ui/tombstone';
 import { type Preview, type ReadingChoices, Samples, oneSample } from '../data/samples';
 import { readingFinding } from '../ui/findings';
 import { PreviewTable } from '../ui/preview-table';
@@ -24,7 +25,7 @@ import { SampleSteps } from '../ui/sample-steps';
   selector: 'ts-reading-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
   host: { class: 'ts-page' },
-  imports: [MatButtonModule, PageHeader, PreviewTable, ProblemList, ReadingForm, RunProgress, SampleSteps],
+  imports: [MatButtonModule, PageHeader, PreviewTable, ProblemList, ReadingForm, RunProgress, SampleSteps, Tombstone],
   template: `
     <div class="ts-stack">
       <ts-sample-steps
@@ -38,6 +39,9 @@ import { SampleSteps } from '../ui/sample-steps';
           <button matButton type="button" (click)="discard()">Discard the file</button>
         }
       </ts-page-header>
+      @if (sample.value()?.erased; as erased) {
+        <ts-tombstone [erased]="erased">How the file was read stays; it cannot be looked at or read again.</ts-tombstone>
+      }
       <ts-problems [error]="sample.error()" />
       <ts-problems [error]="looking.error()" next="Change the choices and look again." />
       <ts-problems [error]="starting.error()" />
@@ -116,6 +120,7 @@ export class ReadingPage {
   );
   protected readonly finding = computed(() => {
     const preview = this.preview();
+    if (this.sample.hasValue() && this.sample.value().erased) return 'The rows of this file were erased.';
     if (preview) return readingFinding(preview);
     return this.sample.hasValue() && !this.mayRead() ? this.settledWords() : null;
   });

@@ -125,7 +125,7 @@ export class SamplesPage {
       width: 40,
     },
     { key: 'number', label: 'Number', kind: 'count', value: (row) => row.number },
-    { key: 'state', label: 'State', value: (row) => row.state },
+    { key: 'state', label: 'State', value: (row) => (row.erased ? 'rows erased' : row.state) },
     { key: 'rows', label: 'Rows', kind: 'count', value: (row) => row.rows },
     { key: 'columns', label: 'Columns', kind: 'count', value: (row) => row.columns },
     { key: 'definitions', label: 'Definitions', kind: 'count', value: (row) => row.definitions },
@@ -163,11 +163,13 @@ export class SamplesPage {
   protected readonly runWords = (kind: string): string => runTitles[kind] ?? 'Work on this model';
 
   protected tone(row: SampleSummary): StatusTone {
+    if (row.erased) return 'ended';
     if (row.state === 'reading') return 'under-way';
     return row.state === 'ready' && row.definitions > 0 ? 'kept' : 'waiting';
   }
 
   protected words(row: SampleSummary): string {
+    if (row.erased) return 'Rows erased';
     if (row.state === 'reading') return 'Being read';
     if (row.state === 'received') return 'Confirm how it is read';
     return row.definitions > 0 ? 'Defined' : 'Define it';

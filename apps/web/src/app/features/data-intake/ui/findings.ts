@@ -11,8 +11,10 @@ export function samplesFinding({ samples, uploads }: SampleList): string {
       ? 'A file has arrived in part: choose it again and it goes on from there.'
       : 'A CSV of past applicants with their outcome starts the work.';
   }
+  const erased = samples.filter((sample) => sample.erased !== null).length;
+  if (erased === samples.length) return `The rows of ${erased === 1 ? 'the sample' : `all ${count(erased)} samples`} were erased; what was counted stays.`;
   const defined = samples.filter(({ definitions }) => definitions > 0).length;
-  const waiting = samples.filter(({ state }) => state === 'received').length;
+  const waiting = samples.filter((sample) => sample.state === 'received' && sample.erased === null).length;
   if (waiting > 0)
     return `${plural(waiting, 'file')} of ${count(samples.length)} wait${waiting === 1 ? 's' : ''} for reading choices.`;
   if (defined === 0) return `${plural(samples.length, 'sample')}, none defined yet: say what is good and bad, and confirm.`;

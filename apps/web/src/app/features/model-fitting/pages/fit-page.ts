@@ -15,6 +15,7 @@ import { plural, significant } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
+import { Tombstone } from '../../../ui/tombstone';
 import { Fits } from '../data/fits';
 import { AtPenalty } from '../ui/at-penalty';
 import { PathFigure } from '../ui/path-figure';
@@ -39,7 +40,7 @@ const ruleNames = {
 @Component({
   selector: 'ts-fit-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
-  imports: [MatButtonModule, RouterLink, AtPenalty, DecisionNotice, FigureFrame, PageHeader, PathFigure, ProblemList, RunProgress],
+  imports: [MatButtonModule, RouterLink, AtPenalty, DecisionNotice, FigureFrame, PageHeader, PathFigure, ProblemList, RunProgress, Tombstone],
   templateUrl: './fit-page.html',
   styles: `
     .decision,
@@ -99,7 +100,7 @@ export class FitPage {
   });
   protected readonly decision = computed(() => {
     const path = this.pathValue();
-    return path ? decisionAt(path, this.index()) : null;
+    return path && !this.fit()?.erased ? decisionAt(path, this.index()) : null;
   });
   protected readonly inference = computed(() => inferenceWords(this.fit()?.inference ?? 'none'));
   protected readonly correction = computed(() => {
@@ -109,11 +110,11 @@ export class FitPage {
   protected readonly isChosen = computed(() => this.fit()?.choice?.index === this.index());
   protected readonly compareWith = computed(() => {
     const fit = this.fit();
-    if (!fit || !this.list.hasValue()) return null;
+    if (!fit || fit.erased || !this.list.hasValue()) return null;
     const fits = this.list.value().fits;
     // The accepts-only fit first: a fit with inference is held against it.
     if (fit.acceptsOnlyId !== null) return fit.state === 'ready' ? `${fit.acceptsOnlyId},${fit.id}` : null;
-    const other = fits.find((entry) => entry.state === 'ready' && entry.id !== fit.id);
+    const other = fits.find((entry) => entry.state === 'ready' && entry.id !== fit.id && entry.erased === null);
     return fit.state === 'ready' && other ? `${fit.id},${other.id}` : null;
   });
   protected readonly table = computed<FigureTable<PathRow> | null>(() => {

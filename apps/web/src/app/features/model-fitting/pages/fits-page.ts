@@ -67,7 +67,7 @@ const kindOf = (mixing: number): string => (mixing === 1 ? 'Lasso (L1)' : mixing
           <ng-template tsCell="pick" let-row>
             <mat-checkbox
               [checked]="picked().includes(row.id)"
-              [disabled]="row.state !== 'ready'"
+              [disabled]="row.state !== 'ready' || row.erased !== null"
               [aria-label]="'Compare ' + row.name"
               (change)="pick(row.id, $event.checked)"
             />
@@ -129,12 +129,14 @@ export class FitsPage {
   }
 
   protected tone(fit: FitSummary): StatusTone {
+    if (fit.erased) return fit.state === 'failed' ? 'refused' : 'ended';
     if (fit.state === 'ready') return fit.choice ? 'kept' : 'waiting';
     if (fit.state === 'failed') return 'refused';
     return fit.state === 'cancelled' ? 'ended' : 'under-way';
   }
 
   protected words(fit: FitSummary): string {
+    if (fit.state === 'ready' && fit.erased) return fit.choice ? 'penalty chosen, rows erased' : 'rows erased';
     if (fit.state === 'ready') return fit.choice ? 'penalty chosen' : 'choose a penalty';
     return fit.state === 'queued' ? 'waiting' : fit.state;
   }

@@ -106,7 +106,7 @@ export class NewFitPage {
   });
 
   protected readonly binnings = this.fits.binnings(() => this.modelId());
-  protected readonly ready = computed(() => (this.binnings.hasValue() ? this.binnings.value().binnings.filter((entry) => entry.state === 'ready') : []));
+  protected readonly ready = computed(() => (this.binnings.hasValue() ? this.binnings.value().binnings.filter((entry) => entry.state === 'ready' && entry.erased === null) : []));
   private readonly binningId = toSignal(this.form.controls.binningId.valueChanges, { initialValue: '' });
   protected readonly characteristics = this.fits.characteristics(() => this.binningId() || null);
   private readonly basisOfBinning = this.fits.basis(() => this.ready().find((entry) => entry.id === this.binningId())?.definitionId ?? null);

@@ -7,6 +7,7 @@ import { MatButtonHarness } from '@angular/material/button/testing';
 import { MatInputHarness } from '@angular/material/input/testing';
 import { provideRouter } from '@angular/router';
 import { CurrentModel, type Model } from '../../../core/current-model';
+import { Session } from '../../../core/session';
 import { problemInterceptor } from '../../../core/http/interceptors';
 import { AboutPage } from './about-page';
 
@@ -50,6 +51,9 @@ describe('AboutPage', () => {
       providers: [provideHttpClient(withInterceptors([problemInterceptor])), provideHttpClientTesting(), provideRouter([])],
     });
     server = TestBed.inject(HttpTestingController);
+    const session = TestBed.inject(Session).load();
+    server.expectOne('/api/session').flush({ user: null, demo: false, abilities: ['models.read-content'] });
+    await session;
     void TestBed.inject(CurrentModel).open('m1');
     answerModel({}, '"3"');
     server.expectOne('/api/models/m1/work').flush({ steps: [] });

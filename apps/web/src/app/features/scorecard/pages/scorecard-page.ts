@@ -25,6 +25,7 @@ import { partitionName } from '../../../ui/partition-mark';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { showInvalid } from '../../../ui/show-invalid';
+import { Tombstone } from '../../../ui/tombstone';
 import { Scorecards } from '../data/scorecards';
 import { ApplicantForm } from './applicant-form';
 import { PointsList } from '../ui/points-list';
@@ -34,6 +35,7 @@ import {
   bandLabel,
   decisionWords,
   freezeWords,
+  isCounted,
   pointsUnder,
   roundingWords,
   scaleReadings,
@@ -64,6 +66,7 @@ import { fillSettings, holdToBands, settingsForm, settingsOf } from '../ui/setti
     ProblemList,
     RunProgress,
     ScoreFigure,
+    Tombstone,
   ],
   templateUrl: './scorecard-page.html',
   styleUrl: './scorecard-page.scss',
@@ -120,7 +123,9 @@ export class ScorecardPage {
   protected readonly finding = computed(() => mapped(this.scorecard(), scorecardFinding));
   protected readonly decision = computed(() => mapped(this.scorecard(), scorecardDecision));
   protected readonly decisionText = computed(() => mapped(this.scorecard(), decisionWords));
-  protected readonly rounding = computed(() => mapped(this.scorecard(), roundingWords));
+  /** With what is counted on rows, while they are there. */
+  protected readonly counted = computed(() => mapped(this.scorecard(), (scorecard) => (isCounted(scorecard) ? scorecard : null)));
+  protected readonly rounding = computed(() => mapped(this.counted(), roundingWords));
   protected readonly blocks = computed(() => {
     const scorecard = this.scorecard();
     const shown = this.shown();

@@ -1,7 +1,7 @@
-import type { Scorecard } from '@tallystone/contracts/scorecards/schema';
+import type { CountedScorecard } from '../ui/scorecard-view';
 
 /** Two invented characteristics; points follow from the scaling: Factor = 20 / ln 2, Offset = 600 − Factor ln 50. */
-export const smallScorecard: Scorecard = {
+export const smallScorecard: CountedScorecard = {
   fitId: '22222222-2222-4222-8222-222222222222',
   modelId: '11111111-1111-4111-8111-111111111111',
   fitName: 'Lasso',
@@ -55,6 +55,7 @@ export const smallScorecard: Scorecard = {
   smallestScore: 532,
   largestScore: 568,
   rounding: { largest: 0.9, auc: 0.78, aucRounded: 0.778, decisionsChanged: 0.006 },
+  erased: null,
   againstWoe: [],
   abilities: ['edit', 'freeze'],
 };

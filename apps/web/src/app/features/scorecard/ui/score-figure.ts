@@ -1,11 +1,10 @@
 import { ChangeDetectionStrategy, Component, computed, input, output, signal } from '@angular/core';
-import type { Scorecard } from '@tallystone/contracts/scorecards/schema';
 import { scaleLinear } from 'd3-scale';
 import { type Column } from '../../../ui/column';
 import { ElementWidth } from '../../../ui/element-width';
 import { FigureFrame, FigurePoint, type FigureTable } from '../../../ui/figure-frame';
 import { count, points } from '../../../ui/numbers';
-import { bandLabel, bandsFinding, cutOffLabel } from './scorecard-view';
+import { type CountedScorecard, bandLabel, bandsFinding, cutOffLabel } from './scorecard-view';
 
 interface Step {
   readonly from: number;
@@ -26,7 +25,7 @@ interface Step {
   styleUrl: './score-figure.scss',
 })
 export class ScoreFigure {
-  readonly scorecard = input.required<Scorecard>();
+  readonly scorecard = input.required<CountedScorecard>();
   /** As it stands in the form; null while not stated. */
   readonly cutOff = input<number | null>(null);
   readonly movable = input(false);

@@ -2,6 +2,12 @@ import type { ScoreBand, Scorecard, ScorecardSettings } from '@tallystone/contra
 import { scaleToPoints } from '@tallystone/numeric/scaling/points';
 import { MINUS, fixed, metric, plural, points, share } from '../../../ui/numbers';
 
+/** A scorecard whose rows are there: what is counted on them is not null. */
+export type CountedScorecard = Scorecard & { readonly distribution: Distribution; readonly rounding: NonNullable<Scorecard['rounding']> };
+type Distribution = NonNullable<Scorecard['distribution']>;
+
+export const isCounted = (scorecard: Scorecard): scorecard is CountedScorecard => scorecard.distribution !== null && scorecard.rounding !== null;
+
 /** One attribute as the points table lists it. */
 export interface Attribute {
   readonly label: string;
@@ -73,8 +79,8 @@ export function withoutReason(scorecard: Scorecard): string[] {
 }
 
 /**
- * The sentence of the page, the first rule that holds: nothing is kept; a coefficient runs against WOE; else the range of scores and the
- * characteristic that can decide most.
+ * The sentence of the page, the first rule that holds: nothing is kept; a coefficient runs against WOE; else the range of scores, where the
+ * rows that they were counted on are there, and the characteristic that can decide most.
  */
 export function scorecardFinding(scorecard: Scorecard): string {
   const { characteristics } = scorecard;
@@ -85,7 +91,9 @@ export function scorecardFinding(scorecard: Scorecard): string {
   }
   const [most] = [...pointsUnder(scorecard, scorecard.settings.scaling)].sort((a, b) => b.range - a.range);
   const kept = plural(characteristics.length, 'characteristic');
-  return `${kept} ${characteristics.length === 1 ? 'makes' : 'make'} scores from ${points(scorecard.smallestScore)} to ${points(scorecard.largestScore)}; ${most.label} can decide most, with ${plural(most.range, 'point')} between its attributes.`;
+  const decides = `${most.label} can decide most, with ${plural(most.range, 'point')} between its attributes.`;
+  if (scorecard.smallestScore === null || scorecard.largestScore === null) return `${kept} ${characteristics.length === 1 ? 'makes' : 'make'} the score; ${decides}`;
+  return `${kept} ${characteristics.length === 1 ? 'makes' : 'make'} scores from ${points(scorecard.smallestScore)} to ${points(scorecard.largestScore)}; ${decides}`;
 }
 
 export type ScorecardDecision = 'nothing-kept' | 'scale' | 'reasons' | 'cut-off' | 'freeze';
@@ -134,7 +142,7 @@ export interface AtCutOff {
 }
 
 /** Approval rate and bad rate at a cut-off, of development and hold-out rows with a known outcome. */
-export function atCutOff(distribution: Scorecard['distribution'], cutOff: number): AtCutOff {
+export function atCutOff(distribution: Distribution, cutOff: number): AtCutOff {
   const { from, step, goods, bads } = distribution;
   const place = (cutOff - from) / step;
   const first = Math.max(0, Math.ceil(place - 1e-9));
@@ -149,7 +157,7 @@ export function atCutOff(distribution: Scorecard['distribution'], cutOff: number
 }
 
 /** "cut-off 470: approves 71.2 %, bad rate 12.3 %". */
-export function cutOffLabel(distribution: Scorecard['distribution'], cutOff: number): string {
+export function cutOffLabel(distribution: Distribution, cutOff: number): string {
   const { approved, badRate, exact } = atCutOff(distribution, cutOff);
   const about = exact ? '' : 'about ';
   return `cut-off ${points(cutOff)}: approves ${about}${share(approved)}${badRate === null ? '' : `, bad rate ${about}${share(badRate)}`}`;
@@ -182,7 +190,7 @@ export function bandsFinding(bands: readonly ScoreBand[]): string {
 }
 
 /** What rounding to whole points costs. */
-export function roundingWords({ rounding }: Pick<Scorecard, 'rounding'>): string {
+export function roundingWords({ rounding }: Pick<CountedScorecard, 'rounding'>): string {
   const { largest, auc, aucRounded, decisionsChanged } = rounding;
   const change = aucRounded - auc;
   const moved = Math.abs(change) < 0.0005 ? `leaves AUC at ${metric(auc)}` : `moves AUC by ${change < 0 ? MINUS : '+'}${fixed(Math.abs(change), 4)}`;

@@ -18,6 +18,7 @@ import { moment } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
+import { Tombstone } from '../../../ui/tombstone';
 import { Versions } from '../data/versions';
 import { AucFigure, measures } from '../ui/auc-figure';
 import { ChallengeTable } from '../ui/challenge-table';
@@ -46,6 +47,7 @@ import { latestByMethod, methodName, nextTest, validationFinding } from '../ui/v
     ProblemList,
     RunProgress,
     StabilityFigure,
+    Tombstone,
   ],
   templateUrl: './validation-page.html',
   styleUrl: './validation-page.scss',

@@ -8,6 +8,7 @@ import { fixed, significant } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { StatusMark } from '../../../ui/status-mark';
+import { Tombstone } from '../../../ui/tombstone';
 import { stateTone } from '../../../ui/version-state';
 import { Versions } from '../data/versions';
 import { GateList } from '../ui/gate-list';
@@ -20,7 +21,7 @@ import { gateAhead, versionFinding } from '../ui/version-view';
 @Component({
   selector: 'ts-version-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
-  imports: [MatButtonModule, RouterLink, GateList, LifeLine, PageHeader, ProblemList, StatusMark, TextsEditor, VersionActs],
+  imports: [MatButtonModule, RouterLink, GateList, LifeLine, PageHeader, ProblemList, StatusMark, TextsEditor, Tombstone, VersionActs],
   templateUrl: './version-page.html',
   styleUrl: './version-page.scss',
 })

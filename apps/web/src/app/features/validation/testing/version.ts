@@ -20,6 +20,7 @@ export const frozen: Version = {
   frozenBy: 'Marian',
   frozenAt: '2026-11-03T13:00:00Z',
   waitingFor: 'its modeller to submit',
+  erased: null,
   specificationSha256: sha,
   resultSha256: sha,
   dataSha256: sha,
