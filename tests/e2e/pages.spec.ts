@@ -2,7 +2,7 @@ import { join } from 'node:path';
 import { fileURLToPath } from 'node:url';
 import type { Locator, Page } from '@playwright/test';
 import { clientRoutes } from '../support/client-routes';
-import { type DemoPlaces, enterEmptyModel, inviteByMail } from '../support/demo-places';
+import { type DemoPlaces, bringIn, enterEmptyModel, inviteByMail } from '../support/demo-places';
 import { expectAccessible, expectLoaded, expectNoOverflow, keepPicture, narrow, present, wide } from '../support/page-inspection';
 import { type Room, expect, test } from '../support/rooms';
 
@@ -46,6 +46,7 @@ const inside = (path: string, visit: Inside): Visit => ({
 const smallFile = fileURLToPath(new URL('../../data-demo/intake/ok/plain.csv', import.meta.url));
 /** Each process that runs tests has one of its own: what one brings in is not there for another. */
 const emptyModel = `Credit cards, behavioural scorecard ${Number(process.env['TEST_PARALLEL_INDEX']) + 1}`;
+const outdated = `Store cards, application scorecard ${Number(process.env['TEST_PARALLEL_INDEX']) + 1}`;
 let emptyModelId: string | undefined;
 /** A page of a model that nobody has worked on yet. */
 const untouched = (path: string, heading: string, loaded: Visit['loaded']): Visit => ({
@@ -74,6 +75,32 @@ const visits: readonly Visit[] = [
   { route: '/unreachable', as: 'nobody', at: () => '/unreachable', heading: 'The server cannot be reached', loaded: button('Try again') },
   { route: '/models/new', as: 'modeller', at: () => '/models/new', heading: 'New model', loaded: button('Enter the model') },
   inside('', { heading: 'About this model', loaded: region('Modellers') }),
+  inside('/kept-samples', { as: 'admin', heading: 'Kept of applicants', loaded: table('Samples kept') }),
+  {
+    route: '/models/:modelId/kept-samples',
+    state: 'erased',
+    as: 'admin',
+    async at(_places, roomOf) {
+      const { page } = await roomOf('modeller');
+      const { id } = await enterEmptyModel(page, outdated);
+      await bringIn(page, id, 'applicants-2019.csv', 'a,bad\n1,0\n2,1\n');
+      return `/models/${id}/kept-samples`;
+    },
+    heading: 'Kept of applicants',
+    model: () => outdated,
+    async first(page) {
+      await page.getByRole('button', { name: 'Erase the rows of applicants-2019.csv' }).click();
+      const dialog = page.getByRole('dialog', { name: 'Erase the rows of sample 1?' });
+      await dialog.getByRole('button', { name: 'Erase the rows' }).click();
+      await expect(dialog.getByText('Type applicants-2019.csv: erasing cannot be undone.')).toBeVisible();
+      await expectAccessible(page, 'all', 'the dialog');
+      await dialog.getByLabel('Why they are erased').fill('Retention of seven years has ended.');
+      await dialog.getByLabel('Name of the file, typed again').fill('applicants-2019.csv');
+      await dialog.getByRole('button', { name: 'Erase the rows' }).click();
+      await expect(dialog).toHaveCount(0);
+    },
+    loaded: words('No row of any applicant is kept in this model; the rows of one sample were erased.'),
+  },
   inside('/sample', { heading: 'Sample', loaded: table('Samples') }),
   inside('/sample/:sampleId', { at: ({ sampleId }) => `/sample/${sampleId}`, heading: 'Definition', loaded: region('Confirmed definition') }),
   inside('/sample/:sampleId/reading', { at: ({ sampleId }) => `/sample/${sampleId}/reading`, heading: 'Reading choices', loaded: words('a confirmed definition rests on them') }),

@@ -50,6 +50,10 @@ describe('the sentence of the scorecard', () => {
     const [age, home] = smallScorecard.characteristics;
     expect(scorecardFinding({ ...smallScorecard, characteristics: [age, { ...home, coefficient: -0.1 }] })).toBe('home runs against WOE: there, a lower risk costs points.');
     expect(scorecardFinding({ ...smallScorecard, characteristics: [] })).toContain('same score');
+    // Without the rows there are points and no scores.
+    expect(scorecardFinding({ ...smallScorecard, distribution: null, rounding: null, smallestScore: null, largestScore: null })).toBe(
+      '2 characteristics make the score; age can decide most, with 28 points between its attributes.',
+    );
   });
 });
 

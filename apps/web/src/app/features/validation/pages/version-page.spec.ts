@@ -63,6 +63,15 @@ describe('VersionPage', () => {
     expect(await (await button('Submit for validation')).isDisabled()).toBe(true);
   });
 
+  it('says so at its head once its rows were erased', async () => {
+    const erased = { sample: 1, fileName: 'applicants.csv', at: '2026-12-02T10:00:00Z', by: 'Ada', reason: 'Retention has ended' };
+    await open({ ...frozen, erased });
+    expect(page().querySelector('.state')?.textContent).toContain('No longer replicable');
+    expect(page().querySelector('ts-tombstone')?.textContent).toContain(
+      'No longer replicable: the rows of sample 1, applicants.csv, were erased on 2026-12-02 by Ada. Reason: Retention has ended.',
+    );
+  });
+
   it('shows why an act is not open to this person', async () => {
     await open({ ...frozen, state: 'Submitted', abilities: [], refusals: { start: 'You took part in developing this version: someone else has to validate it.' } }, []);
     expect(page().textContent).toContain('someone else has to validate it');
