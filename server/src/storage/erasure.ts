@@ -41,7 +41,7 @@ const sampleOf: Readonly<Record<string, string>> = {
  * if (column.codes.length !== count) await refuseErased(sequelize, { readingId });
  */
 export async function refuseErased(sequelize: Sequelize, place: RowsPlace, tx: Transaction | null = null): Promise<void> {
-  const [[kind, id]] = Object.entries(place) as [string, string][];
+  const [[kind, id]] = Object.entries<string>(place);
   const [found] = await rows<{ erased: Erasure | null }>(
     sequelize,
     `SELECT ${tombstoneOf('s.id')} AS erased FROM samples s WHERE s.id = (${sampleOf[kind]})`,
@@ -59,7 +59,7 @@ export async function refuseErased(sequelize: Sequelize, place: RowsPlace, tx: T
  * @throws Problem 409 `rows-erased`
  */
 export async function holdRows(sequelize: Sequelize, tx: Transaction, place: RowsPlace): Promise<string> {
-  const [[kind, id]] = Object.entries(place) as [string, string][];
+  const [[kind, id]] = Object.entries<string>(place);
   const [held] = await rows<{ id: string }>(sequelize, `SELECT id FROM samples WHERE id = (${sampleOf[kind]}) FOR KEY SHARE`, [id], tx);
   if (!held) throw new Error(`There is no sample of ${kind} ${id}`);
   await refuseErased(sequelize, { sampleId: held.id }, tx);

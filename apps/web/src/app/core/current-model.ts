@@ -1,5 +1,5 @@
 import { HttpClient } from '@angular/common/http';
-import { Injectable, computed, inject, signal } from '@angular/core';
+import { Injectable, Injector, computed, inject, signal } from '@angular/core';
 import type { Model, ModelWork, WorkStep } from '@tallystone/contracts/models/schema';
 import { firstValueFrom } from 'rxjs';
 import { tagged } from './http/etag';
@@ -19,7 +19,8 @@ export type { Model, WorkStep };
 @Injectable({ providedIn: 'root' })
 export class CurrentModel {
   private readonly http = inject(HttpClient);
-  private readonly session = inject(Session);
+  /** Asked for the session when it is needed: the session knows the router, and the router's titles know the model. */
+  private readonly injector = inject(Injector);
   private readonly value = signal<Model | null>(null);
   private readonly work = signal<readonly WorkStep[]>([]);
   private readonly failed = signal<Problem | null>(null);
@@ -51,7 +52,7 @@ export class CurrentModel {
       const [model, work] = await Promise.all([
         firstValueFrom(this.http.get<Model>(`/api/models/${id}`, { observe: 'response' })),
         // How far the work has come is inside the model: an admin sees what the inventory says of it and no more.
-        this.session.can('models.read-content') ? firstValueFrom(this.http.get<ModelWork>(`/api/models/${id}/work`)) : { steps: [] },
+        this.injector.get(Session).can('models.read-content') ? firstValueFrom(this.http.get<ModelWork>(`/api/models/${id}/work`)) : { steps: [] },
       ]);
       if (this.wanted !== id) return;
       const { value, etag } = tagged(model);

@@ -7,13 +7,19 @@ import { CurrentModel } from '../../../core/current-model';
 import { type Column } from '../../../ui/column';
 import { CellTemplate, DenseTable } from '../../../ui/dense-table';
 import { EmptyState } from '../../../ui/empty-state';
-import { bytes, day } from '../../../ui/numbers';
+import { bytes } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { StatusMark } from '../../../ui/status-mark';
 import { Erasures, type KeptSample, type KeptUpload, keptSamplesOf } from '../data/kept-samples';
 import { EraseDialog, type EraseQuestion } from '../ui/erase-dialog';
 import { keptFinding, restingWords } from '../ui/kept-words';
+
+const erasedColumns: readonly Column<KeptSample>[] = [
+  { key: 'erased', label: 'Erased', kind: 'moment', value: (row) => row.erased?.at },
+  { key: 'by', label: 'By', value: (row) => row.erased?.by },
+  { key: 'why', label: 'Why', value: (row) => row.erased?.reason, width: 40 },
+];
 
 /** What is kept of applicants in a model: files, dates, rows and what rests on them, no value of any row. An admin erases rows here. */
 @Component({
@@ -33,11 +39,11 @@ import { keptFinding, restingWords } from '../ui/kept-words';
         @if (samples.length > 0) {
           <ts-table caption="Samples kept" [columns]="columns()" [rows]="samples" [identify]="byId" [quiet]="isErased">
             <ng-template tsCell="state" [tsCellRows]="samples" let-row>
-              <ts-status [tone]="row.erased ? 'ended' : 'kept'">{{ stateWords(row) }}</ts-status>
+              <ts-status [tone]="row.erased ? 'ended' : 'kept'">{{ row.erased ? 'erased' : 'kept' }}</ts-status>
             </ng-template>
             <ng-template tsCell="erase" [tsCellRows]="samples" let-row>
               @if (row.abilities.includes('erase')) {
-                <button matButton type="button" [attr.aria-label]="'Erase the rows of ' + row.fileName" (click)="erase(row)">
+                <button class="act" matButton type="button" [attr.aria-label]="'Erase the rows of ' + row.fileName" (click)="erase(row)">
                   Erase the rows
                 </button>
               }
@@ -65,6 +71,9 @@ import { keptFinding, restingWords } from '../ui/kept-words';
       display: grid;
       gap: 8px;
     }
+    .act {
+      margin: -7px 0 -7px -12px;
+    }
     .words {
       max-width: var(--ts-measure);
     }
@@ -87,7 +96,7 @@ export class KeptPage {
     return [
       { key: 'file', label: 'File', value: (row) => row.fileName, width: 40 },
       { key: 'number', label: 'Number', kind: 'count', value: (row) => row.number },
-      { key: 'state', label: 'Rows are', value: (row) => this.stateWords(row) },
+      { key: 'state', label: 'Rows are', value: (row) => (row.erased ? 'erased' : 'kept') },
       { key: 'rows', label: 'Rows', kind: 'count', value: (row) => row.rows },
       { key: 'size', label: 'Size', kind: 'number', value: (row) => row.size, format: (row) => bytes(row.size) },
       { key: 'received', label: 'Received', kind: 'moment', value: (row) => row.receivedAt },
@@ -95,7 +104,7 @@ export class KeptPage {
       { key: 'resting', label: 'What rests on it', value: restingWords, width: 32 },
       { key: 'sha256', label: 'SHA-256', value: (row) => row.sha256, format: (row) => `${row.sha256.slice(0, 12)}…` },
       // What only some of the rows have takes room only where there are some.
-      ...(samples.some(({ erased }) => erased) ? [{ key: 'why', label: 'Why erased', value: (row: KeptSample) => row.erased?.reason, width: 40 }] : []),
+      ...(samples.some(({ erased }) => erased) ? erasedColumns : []),
       ...(samples.some(({ abilities }) => abilities.includes('erase')) ? [{ key: 'erase', label: 'Erase', value: () => '' }] : []),
     ];
   });
@@ -108,7 +117,6 @@ export class KeptPage {
 
   protected readonly byId = (row: { readonly id: string }): string => row.id;
   protected readonly isErased = (row: KeptSample): boolean => row.erased !== null;
-  protected readonly stateWords = ({ erased }: KeptSample): string => (erased ? `erased ${day(erased.at)} by ${erased.by}` : 'kept');
 
   protected async erase(sample: KeptSample): Promise<void> {
     const data: EraseQuestion = { sample, erase: (erasure) => this.erasures.erase(this.modelId(), sample.id, erasure) };
