@@ -40,10 +40,15 @@ export const versionLink = (label: string): Column<VersionSummary> => ({
       <ng-template tsCell="state" [tsCellRows]="versions()" let-row>
         <ts-status [tone]="tone(row)">{{ row.state }}</ts-status>
         @if (row.erased) {
-          <ts-status tone="ended">no longer replicable</ts-status>
+          <ts-status class="gone" tone="ended">no longer replicable</ts-status>
         }
       </ng-template>
     </ts-table>
+  `,
+  styles: `
+    .gone {
+      margin-left: 12px;
+    }
   `,
 })
 export class VersionTable {
