@@ -71,7 +71,7 @@ export function quantileType7(values: ArrayLike<number>, p: number): number {
 export function quantilesType7(values: ArrayLike<number>, probabilities: readonly number[]): number[] {
   requireSome(values);
   requireFinite('values', values);
-  const sorted = Float64Array.from(values).sort();
+  const sorted = new Float64Array(values).sort();
   return probabilities.map((p) => quantileOfSorted(sorted, p));
 }
 

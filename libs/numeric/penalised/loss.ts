@@ -24,7 +24,9 @@ export function probabilityOfBad(eta: number): number {
  */
 export function probabilitiesOfBad(eta: ArrayLike<number>): Float64Array {
   requireFinite('eta', eta);
-  return Float64Array.from(eta, probabilityOfBad);
+  const probabilities = new Float64Array(eta.length);
+  for (let i = 0; i < probabilities.length; i++) probabilities[i] = probabilityOfBad(eta[i]);
+  return probabilities;
 }
 
 /**

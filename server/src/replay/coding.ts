@@ -92,8 +92,11 @@ function codeNumeric(
       entry.values.map((value) => [value === 0 ? 0 : value, special[index]] as const),
     ),
   );
-  const binOfValue = (value: number): number =>
-    specialBin.get(value) ?? binOf(value, characteristic.edges, characteristic.closed);
+  const { edges, closed } = characteristic;
+  const binOfValue =
+    specialBin.size === 0
+      ? (value: number) => binOf(value, edges, closed)
+      : (value: number) => specialBin.get(value) ?? binOf(value, edges, closed);
   const column = columns.raw(characteristic.column);
   const view = columns.numbers(characteristic.column);
   if (column !== null && view !== null) {

@@ -59,10 +59,22 @@ export class Columns {
   numbers(name: string): NumberView | null {
     const column = this.raw(name);
     if (column === null) return null;
+    // Missing texts that are numbers are compared as numbers where the spelling is not kept.
+    const missingNumbers = new Set(
+      [...this.missingTexts].map((text) => this.reader.read(text)).filter((value) => !Number.isNaN(value)),
+    );
+    const { size } = missingNumbers;
     if (column.kind === 'texts') {
       const { codes, texts } = column;
-      const missing = Uint8Array.from(texts, (text) => (this.missingTexts.has(text) ? 1 : 0));
-      const numbers = Float64Array.from(texts, (text, index) => (missing[index] === 1 ? NaN : this.reader.read(text)));
+      const missing = new Uint8Array(texts.length);
+      const numbers = new Float64Array(texts.length);
+      for (let code = 0; code < texts.length; code++) {
+        const value = this.reader.read(texts[code]);
+        // A number is missing only where a missing text is one too: most texts need not be looked up.
+        const isMissing = (size > 0 || Number.isNaN(value)) && this.missingTexts.has(texts[code]);
+        missing[code] = isMissing ? 1 : 0;
+        numbers[code] = isMissing ? NaN : value;
+      }
       return {
         number: (row) => numbers[codes[row]],
         missing: (row) => missing[codes[row]] === 1,
@@ -70,14 +82,12 @@ export class Columns {
       };
     }
     const { values, exceptions } = column;
-    // Missing texts that are numbers are compared as numbers here, as the spelling is not kept.
-    const missingNumbers = new Set(
-      [...this.missingTexts].map((text) => this.reader.read(text)).filter((value) => !Number.isNaN(value)),
-    );
     const textAt = (row: number): string => (Number.isNaN(values[row]) ? (exceptions?.get(row) ?? '') : String(values[row]));
     const missingAt = (row: number): boolean =>
-      Number.isNaN(values[row]) ? this.missingTexts.has(exceptions?.get(row) ?? '') : missingNumbers.has(values[row]);
-    return { number: (row) => (missingAt(row) ? NaN : values[row]), missing: missingAt, text: textAt };
+      Number.isNaN(values[row]) ? this.missingTexts.has(exceptions?.get(row) ?? '') : size > 0 && missingNumbers.has(values[row]);
+    // What is no number is NaN already; only numbers that stand for a missing value have to be looked for.
+    const numberAt = size === 0 ? (row: number) => values[row] : (row: number) => (missingNumbers.has(values[row]) ? NaN : values[row]);
+    return { number: numberAt, missing: missingAt, text: textAt };
   }
 }
 

@@ -14,6 +14,7 @@ import type { Specification } from '@tallystone/contracts/specification/types';
 import { byCode, penaltyOf } from './design';
 import type { FitRows } from './fit-rows';
 import { foldClassing, type FoldBins, type FoldClassing } from './fold-classing';
+import { gather, gatherNumbers, placesOf } from './gather';
 import type { ColumnSource } from './source';
 import type { CodeMatrix, Term } from './types';
 
@@ -72,7 +73,7 @@ function columnsOf(terms: readonly Term[], bins: readonly FoldBins[], problem: F
     const { codes, table } = bins[term.characteristic];
     if (codes === null) return problem.columns[index];
     const contributions = byCode(term, table);
-    return Float64Array.from(codes, (code) => contributions[code]);
+    return gatherNumbers(contributions, codes);
   });
 }
 
@@ -87,17 +88,17 @@ function foldByFold(input: CrossValidationInput, folds: Uint8Array, classed: Fol
     const foldTerms = bins === null ? terms : foldTermsOf(terms, bins, coded);
     const columns = bins === null ? problem.columns : columnsOf(foldTerms, bins, linearColumns(foldTerms, terms, problem));
     const penalty = bins === null ? problem.penalty : penaltyOf(spec, coded, foldTerms, mixing);
-    const inside = indices(training, 1);
-    const outside = indices(training, 0);
+    const inside = placesOf(training, 1);
+    const outside = placesOf(training, 0);
     const part: FitProblem = {
-      columns: columns.map((column) => pick(column, inside)),
-      outcome: Uint8Array.from(inside, (index) => fitRows.outcome[index]),
-      ...(fitRows.weights === null ? {} : { weights: pick(fitRows.weights, inside) }),
+      columns: columns.map((column) => gatherNumbers(column, inside)),
+      outcome: gather(fitRows.outcome, inside),
+      ...(fitRows.weights === null ? {} : { weights: gatherNumbers(fitRows.weights, inside) }),
       penalty,
     };
-    const heldColumns = columns.map((column) => pick(column, outside));
-    const heldOutcome = Uint8Array.from(outside, (index) => fitRows.outcome[index]);
-    const heldWeights = fitRows.weights === null ? undefined : pick(fitRows.weights, outside);
+    const heldColumns = columns.map((column) => gatherNumbers(column, outside));
+    const heldOutcome = gather(fitRows.outcome, outside);
+    const heldWeights = fitRows.weights === null ? undefined : gatherNumbers(fitRows.weights, outside);
     const weight = heldWeights === undefined ? outside.length : heldWeights.reduce((sum, value) => sum + value, 0);
     const { fits } = fastPath(part, { lambdas }, { tolerance: FOLD_TOLERANCE, crewFor: input.crewFor });
     results.push({
@@ -136,16 +137,4 @@ function linearColumns(foldTerms: readonly Term[], terms: readonly Term[], probl
     return problem.columns[place];
   });
   return { ...problem, columns };
-}
-
-function indices(flags: Uint8Array, wanted: number): Uint32Array {
-  const chosen: number[] = [];
-  flags.forEach((flag, index) => {
-    if (flag === wanted) chosen.push(index);
-  });
-  return Uint32Array.from(chosen);
-}
-
-function pick(values: Float64Array, places: Uint32Array): Float64Array {
-  return Float64Array.from(places, (place) => values[place]);
 }

@@ -2,6 +2,7 @@ import { fastFit, quantileType7 } from '@tallystone/numeric';
 import type { Characteristic, Specification } from '@tallystone/contracts/specification/types';
 import { designColumns, etaOf, modelTables, penaltyOf, problemOf, termsOf, type ModelTables } from './design';
 import { declinedRows, fitRowsOf, inDevelopment, type FitRows } from './fit-rows';
+import { gatherNumbers, joined } from './gather';
 import { refuse } from './problems';
 import { GOOD, type CodeMatrix, type Prepared } from './types';
 import { woeTables } from './woe';
@@ -72,11 +73,11 @@ function reweighted(
   accepted: FitRows,
   declined: Uint32Array,
 ): FitRows {
-  const rows = Uint32Array.from([...accepted.rows, ...declined]);
+  const rows = joined(accepted.rows, declined);
   const decision: FitRows = {
     rows,
     outcome: Uint8Array.from(rows, (_, index) => (index < accepted.rows.length ? 1 : 0)),
-    weights: prepared.weights === null ? null : Float64Array.from(rows, (row) => prepared.weights?.[row] ?? 1),
+    weights: prepared.weights === null ? null : gatherNumbers(prepared.weights, rows),
     folds: null,
     known: rows.length,
   };

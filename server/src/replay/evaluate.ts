@@ -1,7 +1,8 @@
 import type { MetricsByPartition, PartitionName } from '@tallystone/contracts/result/types';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import { etaOf, modelTables, type ModelTables } from './design';
-import { gather, gatherNumbers, knownRows } from './fit-rows';
+import { knownRows } from './fit-rows';
+import { gather, gatherNumbers } from './gather';
 import { measure } from './metrics';
 import { pointsOf, roundedScores, type PointsTable } from './points';
 import { DEVELOPMENT, HOLD_OUT, OUT_OF_TIME, type CodeMatrix, type Model, type Prepared, type Term } from './types';

@@ -1,3 +1,4 @@
+import { gather, gatherNumbers } from './gather';
 import { BAD, DECLINED, DEVELOPMENT, GOOD, type Prepared } from './types';
 
 /** The rows that a WOE table and a fit are made of: known outcomes of development first, then inferred copies of declined rows. */
@@ -44,18 +45,6 @@ export function fitRowsOf(prepared: Prepared, takes: (partition: number) => bool
     folds: prepared.folds === null ? null : gather(prepared.folds, rows),
     known: rows.length,
   };
-}
-
-export function gather(values: Uint8Array, rows: Uint32Array): Uint8Array {
-  const gathered = new Uint8Array(rows.length);
-  for (let index = 0; index < rows.length; index++) gathered[index] = values[rows[index]];
-  return gathered;
-}
-
-export function gatherNumbers(values: Float64Array, rows: Uint32Array): Float64Array {
-  const gathered = new Float64Array(rows.length);
-  for (let index = 0; index < rows.length; index++) gathered[index] = values[rows[index]];
-  return gathered;
 }
 
 /** Weighted bad rate. */

@@ -5,6 +5,7 @@ import { crossValidated, type CrossValidated } from './cross-validation';
 import { withDeclined } from './declined';
 import { designColumns, isUnpenalised, penaltyOf, problemOf, termsOf } from './design';
 import { badRate, fitRowsOf, type FitRows } from './fit-rows';
+import { joined } from './gather';
 import { ReplayError } from './problems';
 import type { ColumnSource } from './source';
 import { DEVELOPMENT, OUT, type CodeMatrix, type Model, type Prepared, type Term } from './types';
@@ -195,13 +196,10 @@ function withOtherPartitions(prepared: Prepared, development: FitRows): FitRows 
   const weighted = development.weights !== null || others.weights !== null;
   const ones = (length: number): Float64Array => new Float64Array(length).fill(1);
   return {
-    rows: Uint32Array.from([...development.rows, ...others.rows]),
-    outcome: Uint8Array.from([...development.outcome, ...others.outcome]),
+    rows: joined(development.rows, others.rows),
+    outcome: joined(development.outcome, others.outcome),
     weights: weighted
-      ? Float64Array.from([
-          ...(development.weights ?? ones(development.rows.length)),
-          ...(others.weights ?? ones(others.rows.length)),
-        ])
+      ? joined(development.weights ?? ones(development.rows.length), others.weights ?? ones(others.rows.length))
       : null,
     folds: null,
     known: development.known,

@@ -3,6 +3,7 @@ import { type IncumbentFigures, fewestInSegment } from '@tallystone/contracts/co
 import type { PartitionName } from '@tallystone/contracts/result/types';
 import type { DataReading } from '@tallystone/contracts/specification/types';
 import { Columns } from '../replay/columns';
+import { gather, gatherNumbers } from '../replay/gather';
 import type { SourceColumn } from '../replay/source';
 
 /** What fits are held against besides each other: scores that exist already, and segments of the hold-out. */
@@ -36,7 +37,7 @@ export function incumbentFigures(name: string, { data, rows, incumbents }: Other
   first.rows.forEach((row, place) => {
     if (!Number.isNaN(values.number(row))) present.push(place);
   });
-  const outcome = Uint8Array.from(present, (place) => first.outcome[place]);
+  const outcome = gather(first.outcome, present);
   if (!outcome.includes(0) || !outcome.includes(1)) return null;
   const score = Float64Array.from(present, (place) => values.number(first.rows[place]));
   const area = delong(score, outcome);
@@ -50,7 +51,7 @@ export function incumbentFigures(name: string, { data, rows, incumbents }: Other
     aucUpper: finite(area.upper),
     ks: kolmogorovSmirnov(score, outcome).ks,
     tests: fits.map(({ eta }) => {
-      const test = pairedDelong(Float64Array.from(present, (place) => eta[place]), score, outcome);
+      const test = pairedDelong(gatherNumbers(eta, present), score, outcome);
       const told = (value: number): number | null => (tested ? finite(value) : null);
       return { difference: test.difference, lower: told(test.lower), upper: told(test.upper), pValue: told(test.pValue) };
     }),
@@ -85,7 +86,7 @@ export function segmentFigures(name: string, { data, rows, segments }: OtherColu
     .sort((a, b) => b[1].length - a[1].length || (a[0] < b[0] ? -1 : 1))
     .slice(0, mostSegments)
     .map(([value, taken]) => {
-      const outcome = Uint8Array.from(taken, (place) => first.outcome[place]);
+      const outcome = gather(first.outcome, taken);
       const goods = outcome.reduce((sum, one) => sum + one, 0);
       const few = Math.min(goods, outcome.length - goods) < fewestInSegment;
       return {
@@ -93,7 +94,7 @@ export function segmentFigures(name: string, { data, rows, segments }: OtherColu
         value,
         rows: outcome.length,
         bads: few ? null : outcome.length - goods,
-        auc: fits.map(({ eta }) => (few ? null : auc(Float64Array.from(taken, (place) => eta[place]), outcome))),
+        auc: fits.map(({ eta }) => (few ? null : auc(gatherNumbers(eta, taken), outcome))),
       };
     });
 }
