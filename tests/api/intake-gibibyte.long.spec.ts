@@ -97,7 +97,7 @@ describe('a file of 1 GiB', () => {
       const [webMemory, workerMemory] = [peakMemoryMiB(web.process), peakMemoryMiB(worker.process)];
       console.log(`1 GiB: web ${webMemory.toFixed(0)} MiB, worker ${workerMemory.toFixed(0)} MiB at most`);
       expect(webMemory).toBeLessThan(512);
-      expect(workerMemory).toBeLessThan(900);
+      expect(workerMemory).toBeLessThan(800);
     },
     60 * 60_000,
   );

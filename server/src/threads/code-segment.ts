@@ -39,10 +39,9 @@ export type CodeAnswer =
   | { readonly notPlain: string };
 
 /** Kept between segments of one file, because it holds large arrays; dropped when no segment has come for a while. */
-let kept: { coder: SegmentCoder; form: string } | null = null;
+let kept: { coder: SegmentCoder; form: string; mostRows: number } | null = null;
 let dropping: NodeJS.Timeout | undefined;
 const idle = 2000;
-const segmentRows = 65_536;
 
 /** Codes the records of one segment into columns as they are stored, off the event loop. */
 export const codeSegment: Task<CodePayload, CodeAnswer> = (payload, control) => {
@@ -55,10 +54,12 @@ export const codeSegment: Task<CodePayload, CodeAnswer> = (payload, control) => 
     mostBytes: payload.mostBytes,
     sign: choices.decimal.charCodeAt(0),
     seed: payload.seed,
-    mostRows: segmentRows,
   };
-  const name = JSON.stringify(form);
-  if (kept?.form !== name) kept = { coder: new SegmentCoder(form), form: name };
+  // The first segment has more rows than the others: what it took is not kept for them.
+  const name = JSON.stringify({ ...form, first: payload.personal === null });
+  const mostRows = payload.rows;
+  if (kept?.form !== name || kept.mostRows < mostRows)
+    kept = { coder: new SegmentCoder({ ...form, mostRows }), form: name, mostRows };
   const { coder } = kept;
   dropping = setTimeout(() => (kept = null), idle);
   dropping.unref();
