@@ -1,29 +1,54 @@
+/** A value that is no measurement. */
+export interface SpecialCode {
+  code: string;
+  meaning: string;
+  /** What is done about it beside the bin of its own. */
+  treatment: string;
+}
+
 /** The columns of the demo file in order, with what a data dictionary says about each. */
 export interface ColumnEntry<Name extends string = string> {
   column: Name;
   label: string;
   description: string;
   unit: string;
-  /** code = meaning, separated by semicolons; empty where there is none. */
-  specialCodes: string;
+  specialCodes: readonly SpecialCode[];
 }
 
-const noBureau = '-999 = no bureau record';
-const notMember = '-998 = not a member when applying';
+const noBureau: SpecialCode = {
+  code: '-999',
+  meaning: 'no bureau record',
+  treatment: 'Points of its own bin; a thin file is neither missing nor zero.',
+};
+const notMember: SpecialCode = {
+  code: '-998',
+  meaning: 'not a member when applying',
+  treatment: 'Points of its own bin; there is no account here to look at.',
+};
+const noCard: SpecialCode = {
+  code: '-997',
+  meaning: 'no card',
+  treatment: 'Points of its own bin; without a limit there is no share of one.',
+};
+const neverInArrears: SpecialCode = {
+  code: '-996',
+  meaning: 'never in arrears',
+  treatment: 'Points of its own bin, expected to be the safest.',
+};
 
 function entry<Name extends string>(
   column: Name,
   label: string,
   description: string,
   unit = '',
-  specialCodes = '',
+  ...specialCodes: SpecialCode[]
 ): ColumnEntry<Name> {
   return { column, label, description, unit, specialCodes };
 }
 
 export const columns = [
   entry('application_id', 'Application', 'Number of the application; unique'),
-  entry('applied_on', 'Applied on', 'Date of the application', 'date, ISO 8601'),
+  entry('applied_on', 'Applied on', 'Date of the application'),
   entry(
     'channel',
     'Channel',
@@ -36,7 +61,7 @@ export const columns = [
   entry('loan_amount', 'Amount asked for', 'Amount asked for', 'euros'),
   entry('term_months', 'Term', 'Term asked for', 'months'),
   entry('purpose', 'Purpose', 'What the loan is for, as stated'),
-  entry('monthly_income', 'Monthly income', 'Net income as stated and, where possible, checked', 'euros a month'),
+  entry('monthly_income', 'Monthly income', 'Net income a month, as stated and, where possible, checked', 'euros'),
   entry('payment_to_income', 'Payment to income', 'Payment of the loan asked for as a share of net income', '%'),
   entry('home', 'Home', 'Residential status'),
   entry('months_at_address', 'Time at address', 'Months at the present address', 'months'),
@@ -49,19 +74,14 @@ export const columns = [
   entry('salary_paid_in', 'Salary paid in', 'Salary arrives in an account here: yes or no'),
   entry('open_credit_lines', 'Open credit lines', 'Credit lines open at the bureau', '', noBureau),
   entry('unsecured_balance', 'Unsecured balance', 'Sum of unsecured balances at the bureau', 'euros', noBureau),
-  entry(
-    'card_utilisation',
-    'Card utilisation',
-    'Balances of cards as a share of their limits',
-    '%',
-    `${noBureau}; -997 = no card`,
-  ),
+  entry('card_utilisation', 'Card utilisation', 'Balances of cards as a share of their limits', '%', noBureau, noCard),
   entry(
     'months_since_arrears',
     'Months since arrears',
     'Months since the last payment in arrears',
     'months',
-    `${noBureau}; -996 = never in arrears`,
+    noBureau,
+    neverInArrears,
   ),
   entry('worst_arrears_24m', 'Worst arrears', 'Worst number of payments in arrears over 24 months', 'payments', noBureau),
   entry('lines_in_arrears_24m', 'Lines in arrears', 'Lines with any arrears over 24 months', '', noBureau),
@@ -70,7 +90,7 @@ export const columns = [
   entry('oldest_line_months', 'Age of oldest line', 'Months since the oldest line was opened', 'months', noBureau),
   entry('court_records_6y', 'Court records', 'Court records for debt over six years', '', noBureau),
   entry('preferred_contact', 'Preferred contact', 'How the applicant likes to be reached: post, e-mail or phone'),
-  entry('statement_day', 'Statement day', 'Day of the month chosen for statements', 'day of month'),
+  entry('statement_day', 'Statement day', 'Day of the month chosen for statements'),
   entry('form_minutes', 'Minutes on the form', 'Minutes spent on the web form; NA where there was none', 'minutes'),
   entry('currency', 'Currency', 'Currency of the application; the same throughout'),
   entry('incumbent_score', 'Incumbent score', 'Score of the scorecard in use when the application was decided', 'points'),

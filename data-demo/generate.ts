@@ -52,11 +52,16 @@ export function demoFile(): string {
   );
 }
 
+/** The dictionary as the product takes it in: a line for each column, and one more for each further special code. */
 export function dictionaryFile(): string {
-  const header = line(['column', 'label', 'description', 'unit', 'special codes']);
-  return (
-    header + columns.map((entry) => line([entry.column, entry.label, entry.description, entry.unit, entry.specialCodes])).join('')
+  const header = line(['column', 'label', 'unit', 'description', 'code', 'meaning', 'treatment']);
+  const none = { code: '', meaning: '', treatment: '' };
+  const lines = columns.flatMap(({ column, label, unit, description, specialCodes }) =>
+    (specialCodes.length > 0 ? specialCodes : [none]).map(({ code, meaning, treatment }) =>
+      line([column, label, unit, description, code, meaning, treatment]),
+    ),
   );
+  return header + lines.join('');
 }
 
 if (process.argv[1] === fileURLToPath(import.meta.url)) {

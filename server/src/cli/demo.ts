@@ -2,6 +2,7 @@ import { readConfig } from '../config/environment';
 import { openContext } from '../context';
 import { ensureDemoBinning } from '../demo/binnings';
 import { ensureDemoFits } from '../demo/fits';
+import { ensureDemoAnswers } from '../demo/flags';
 import { ensureDemoModel } from '../demo/models';
 import { demoPeople, ensureDemoPeople } from '../demo/people';
 import { stopDemoWorker } from '../demo/run-to-end';
@@ -20,9 +21,10 @@ const context = await openContext(config, createLog(config.logLevel === 'info' ?
 try {
   const people = await ensureDemoPeople(context);
   const model = await ensureDemoModel(context, people.modeller);
-  const { definitionId } = await ensureDemoSample(context, model, people.modeller);
-  const { binningId } = await ensureDemoBinning(context, model, people.modeller, definitionId);
+  const sample = await ensureDemoSample(context, model, people.modeller);
+  const { binningId } = await ensureDemoBinning(context, model, people.modeller, sample.definitionId);
   const fit = await ensureDemoFits(context, model, people.modeller, binningId);
+  await ensureDemoAnswers(context, model, people.modeller, sample);
   await ensureDemoVersion(context, fit, people.modeller);
   console.log(JSON.stringify({ signIns: demoPeople.map(({ role, email, password }) => ({ role, email, password })) }));
 } catch (error) {

@@ -8,6 +8,8 @@ import type { Actor } from '../models/person';
 import type { FoundModel } from '../services/models/find-model';
 import { confirmDraft } from '../services/samples/confirm-draft';
 import { confirmReading } from '../services/samples/confirm-reading';
+import { findDictionary } from '../services/samples/dictionary/find';
+import { importDictionary } from '../services/samples/dictionary/import';
 import { findDraft, saveDraft } from '../services/samples/draft';
 import { type FoundSample, findSample, samplesOf } from '../services/samples/find-sample';
 import { previewReading } from '../services/samples/preview';
@@ -18,12 +20,7 @@ import { runToEnd } from './run-to-end';
 const file = 'data-demo/saltmarsh-personal-loans.csv';
 const fileName = 'saltmarsh-personal-loans.csv';
 
-const specialCodes: Readonly<Record<string, string>> = {
-  '-999': 'no bureau record',
-  '-998': 'not a member when applying',
-  '-997': 'no card',
-  '-996': 'never in arrears',
-};
+const dictionary = 'data-demo/dictionary.csv';
 
 /**
  * The demo's sample: sent, read, defined and confirmed by the modeller through the same services as anyone's. Goes on from wherever an
@@ -42,7 +39,10 @@ export async function ensureDemoSample(
       WHERE d.model_id = $1 AND s.file_name = $2 ORDER BY d.created_at LIMIT 1`,
     [model.id, fileName],
   );
-  if (known) return known;
+  if (known) {
+    await takeDictionary(context, await found(context, model, known.sampleId), modeller);
+    return known;
+  }
   const there = (await samplesOf(context.sequelize, model)).find((sample) => sample.fileName === fileName);
   let sample = there ?? (await send(context, model, modeller));
   if (!sample.read) {
@@ -51,6 +51,7 @@ export async function ensureDemoSample(
     await runToEnd(context, (tx) => confirmReading(context, tx, modeller, received, choices, 'demo'));
     sample = await found(context, model, sample.id);
   }
+  await takeDictionary(context, sample, modeller);
   await defineDraft(context, sample, modeller);
   const { definitionId } = await runToEnd<{ definitionId: string }>(context, async (tx) => {
     const draft = await findDraft(context, sample, tx, true);
@@ -86,6 +87,21 @@ async function send(context: Context, model: FoundModel, modeller: Actor): Promi
   return sample;
 }
 
+/** Labels, units and special codes, from the file that lies beside the data. */
+async function takeDictionary(context: Context, sample: FoundSample, modeller: Actor): Promise<void> {
+  const text = await readFile(resolve(dictionary), 'utf8');
+  await inTransaction(context.sequelize, async (tx) => {
+    const held = await findDictionary(context.sequelize, await findSample(context.sequelize, sample.modelId, sample.id, tx, true), tx);
+    if (held?.revision === 0) await importDictionary(context, tx, modeller, held, text);
+  });
+}
+
+/** Columns that are not what their values suggest. */
+const decided: Readonly<Record<string, Partial<DraftContent['columns'][number]>>> = {
+  age_band: { role: 'not used', protected: true, reason: 'Protected: kept for fairness checks, not for the fit.' },
+  region: { role: 'segment', reason: 'No points by region: the branches of a region answer for its loans, and figures are wanted by it.' },
+};
+
 /** What Mara decides: declined applicants apart, staff loans out, the last half-year out-of-time. */
 async function defineDraft(context: Context, sample: FoundSample, modeller: Actor): Promise<void> {
   await inTransaction(context.sequelize, async (tx) => {
@@ -95,10 +111,7 @@ async function defineDraft(context: Context, sample: FoundSample, modeller: Acto
       ...draft.content,
       columns: draft.content.columns.map((column) => ({
         ...column,
-        protected: column.protected || column.column === 'age_band',
-        role: column.column === 'age_band' ? 'not used' : column.role,
-        reason: column.column === 'age_band' ? 'Protected: kept for fairness checks, not for the fit.' : column.reason,
-        special: column.kind === 'numeric' && column.role === 'characteristic' ? codesOf(column.column) : [],
+        ...decided[column.column],
       })),
       outcome: { good: ['good'], bad: ['bad'], indeterminate: ['indeterminate'], excluded: [] },
       declined: { values: ['declined'] },
@@ -109,28 +122,6 @@ async function defineDraft(context: Context, sample: FoundSample, modeller: Acto
     };
     await saveDraft(context, tx, modeller, draft, content);
   });
-}
-
-const member = ['months_as_member', 'average_balance_6m', 'overdrawn_days_6m'];
-const bureau = [
-  'open_credit_lines',
-  'unsecured_balance',
-  'card_utilisation',
-  'months_since_arrears',
-  'worst_arrears_24m',
-  'lines_in_arrears_24m',
-  'enquiries_6m',
-  'enquiries_12m',
-  'oldest_line_months',
-  'court_records_6y',
-];
-
-/** As data-demo/dictionary.csv states them. */
-function codesOf(column: string): DraftContent['columns'][number]['special'] {
-  const codes = member.includes(column) ? ['-998'] : bureau.includes(column) ? ['-999'] : [];
-  if (column === 'card_utilisation') codes.push('-997');
-  if (column === 'months_since_arrears') codes.push('-996');
-  return codes.map((code) => ({ label: specialCodes[code], values: [Number(code)] }));
 }
 
 async function found(context: Context, model: FoundModel, sampleId: string): Promise<FoundSample> {

@@ -28,7 +28,7 @@ const texts: VersionTexts = {
 
 const reasonTexts: Readonly<Record<string, string>> = {
   card_utilisation: 'Balances on credit cards are high compared with their limits',
-  bureau_enquiries: 'Many recent applications for credit',
+  enquiries_6m: 'Many recent applications for credit',
   months_since_arrears: 'Recent payments in arrears',
 };
 
