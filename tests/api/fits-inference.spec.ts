@@ -1,6 +1,9 @@
 import type { Comparison } from '@tallystone/contracts/comparison/schema';
 import type { Fit, FitPath } from '@tallystone/contracts/fits/schema';
-import type { DraftContent } from '@tallystone/contracts/samples/definition';
+import { execFileSync } from 'node:child_process';
+import type { PartitionBalance } from '@tallystone/contracts/samples/balance';
+import type { Definition, DraftContent } from '@tallystone/contracts/samples/definition';
+import type { ColumnQualityDetail, QualityState } from '@tallystone/contracts/samples/quality';
 import type { Result } from '@tallystone/contracts/result/types';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
@@ -8,7 +11,7 @@ import { loadPrepared } from '../../server/src/services/samples/definitions';
 import { openSample } from '../../server/src/storage/columnStore';
 import { classApplicants } from '../support/binned';
 import { IntakeServer, type Visitor } from '../support/intake';
-import { choose, fitPath, freeze, scale } from '../support/line';
+import { choose, fitPath, freeze, makeDocument, scale } from '../support/line';
 
 /** What the roles of a sample's columns do to its fits: weight, decision, group key, incumbent score, segment. One sample, three fits. */
 let server: IntakeServer;
@@ -16,9 +19,11 @@ let modeller: Visitor;
 let other: Visitor;
 let modelId: string;
 let sampleId: string;
+let samplePath: string;
 let definitionId: string;
 let binningId: string;
 let plain: Fit;
+let corrected: { versionId: string; shift: number; sampleBadRate: number };
 
 /** Invented: risk falls with age, rises with utilisation; a fifth is declined, the riskier the more often; two rows to a household. */
 function applicants(): string {
@@ -42,7 +47,7 @@ function applicants(): string {
         row % 40 === 0 ? '' : score,
         row % 50 === 0 ? 'pilot' : row % 3 === 0 ? 'web' : 'branch',
         declined ? 'declined' : 'accepted',
-        declined ? '' : bad,
+        declined ? '' : row % 37 === 0 ? 'open' : bad,
       ].join(','),
     );
   }
@@ -61,6 +66,12 @@ beforeAll(async () => {
   const sample = await modeller.sample(modelId, applicants());
   sampleId = sample.id;
   const { body, headers } = await modeller.get(`${sample.path}/draft`).expect(200);
+  const entries = [
+    { column: 'age', label: 'Age when applying', unit: 'years', description: 'In whole years.', treatments: [] },
+    { column: 'segment', label: 'Way in', unit: '', description: 'How the application came.', treatments: [] },
+  ];
+  await modeller.put(`${sample.path}/dictionary`).set('If-Match', '"0"').send({ entries }).expect(200);
+  samplePath = sample.path;
   const roles: Record<string, DraftContent['columns'][number]['role']> = {
     household_no: 'group key',
     weight: 'weight',
@@ -74,7 +85,7 @@ beforeAll(async () => {
   const content: DraftContent = {
     ...draft,
     columns: draft.columns.map((column) => ({ ...column, role: roles[column.column] ?? 'characteristic' })),
-    outcome: { good: ['0'], bad: ['1'], indeterminate: [], excluded: [] },
+    outcome: { good: ['0'], bad: ['1'], indeterminate: ['open'], excluded: [] },
     declined: { values: ['declined'] },
     partition: { by: 'seed', seed: 3, holdOutShare: 0.3, outOfTime: null },
   };
@@ -84,6 +95,8 @@ beforeAll(async () => {
   const run = await modeller.ended(started.body.id as string);
   expect(run.problem).toBeNull();
   definitionId = (run.result as { definitionId: string }).definitionId;
+  const quality = (await modeller.get(`${sample.path}/quality`).expect(200)).body as QualityState;
+  if (quality.runId) await modeller.ended(quality.runId);
   binningId = (await classApplicants(modeller, modelId, definitionId)).id;
   plain = await fitPath(modeller, modelId, binningId, { name: 'Plain', folds, lambda });
 }, 120_000);
@@ -93,6 +106,20 @@ const specificationOf = async (fitId: string): Promise<Specification> => {
   const [[row]] = (await server.context.sequelize.query(`SELECT specification FROM fits WHERE id = '${fitId}'`)) as unknown as [{ specification: string }[]];
   return JSON.parse(row.specification) as Specification;
 };
+
+const thin = (count: number): string => String(count).replace(/\B(?=(\d{3})+$)/g, ' ');
+
+/** The text of a version's document with any run of white space made one blank (poppler's pdftotext, an independent reader). */
+async function documentWords(versionId: string): Promise<string> {
+  const { documentId } = await makeDocument(modeller, versionId);
+  const response = await modeller.get(`/api/documents/${documentId}/file`).buffer(true).parse((incoming, done) => {
+    const chunks: Buffer[] = [];
+    incoming.on('data', (chunk: Buffer) => chunks.push(chunk));
+    incoming.on('end', () => done(null, Buffer.concat(chunks)));
+  });
+  expect(response.status).toBe(200);
+  return execFileSync('pdftotext', ['-layout', '-', '-'], { input: response.body as Buffer, encoding: 'utf8', maxBuffer: 1 << 26 }).replace(/\s+/g, ' ');
+}
 
 describe('what a fit can draw on', () => {
   it('is told to whoever sees the model, and to nobody else', async () => {
@@ -145,6 +172,42 @@ describe('a prior correction', () => {
     expect(result.intercept).toBeCloseTo(scorecard.intercept, 12);
     expect(result.basePoints).toBeCloseTo(scorecard.basePoints, 9);
     expect(result.weightedMetrics).not.toBeNull();
+    corrected = { versionId: version.id, shift, sampleBadRate };
+  }, 120_000);
+});
+
+describe('the document of such a version', () => {
+  it('says of the sample what the API says of it', async () => {
+    const words = await documentWords(corrected.versionId);
+    expect(words).toContain('age Age when applying years In whole years.');
+    expect(words).toContain(`Bad rate of the sample ${(100 * corrected.sampleBadRate).toFixed(2)} % of development, weighted [E-4]`);
+    expect(words).toContain(`Added to the intercept ${corrected.shift.toFixed(6).replace('-', '−')} in ln(good:bad) [E-4] Reason Portfolio of 2024 [E-4]`);
+
+    const definition = (await modeller.get(`${samplePath}/definitions/${definitionId}`).expect(200)).body as Definition;
+    const rate = (part: number | null): string => `${(100 * (part ?? NaN)).toFixed(1)} %`;
+    const readings = definition.counts.sensitivity ?? [];
+    expect(readings).toHaveLength(3);
+    for (const [place, name] of ['left out, as defined', 'all good', 'all bad'].entries()) {
+      const { development, holdOut } = readings[place];
+      const cells = [development, holdOut].flatMap(({ goods, bads, badRate }) => [thin(goods), thin(bads), rate(badRate)]);
+      expect(words).toContain([name, ...cells].join(' '));
+    }
+
+    const { characteristics } = (await modeller.get(`${samplePath}/definitions/${definitionId}/balance`).expect(200)).body as PartitionBalance;
+    expect(characteristics).toHaveLength(2);
+    for (const { column, holdOut, outOfTime } of characteristics ?? []) {
+      const name = column === 'age' ? 'Age when applying (years)' : column;
+      expect(words).toContain(`${name} ${holdOut?.index.toFixed(3)} ${holdOut?.criticalValue?.toFixed(3)} below 0.10, within`);
+      expect(outOfTime).toBeNull();
+    }
+
+    const segment = (await modeller.get(`${samplePath}/quality/column?column=segment`).expect(200)).body as ColumnQualityDetail;
+    for (const { label, rows, goods, bads } of segment.groups)
+      expect(words).toContain(
+        label === 'pilot' ? `pilot ${rows} few few few` : `${label} ${thin(rows)} ${thin(goods)} ${thin(bads)} ${rate(bads / (goods + bads))}`,
+      );
+    expect(words).toContain('Segments by Way in [E-2, E-5]');
+    expect(words).toContain('take no part');
   }, 120_000);
 });
 
@@ -206,6 +269,26 @@ describe('declined applicants', () => {
     expect(branch.auc[1]).toBe(branch.auc[2]);
     expect(pilot).toMatchObject({ bads: null, auc: [null, null, null] });
     expect(comparison.segments.reduce((sum, { rows }) => sum + rows, 0)).toBe(comparison.fits[0].holdOut?.rows);
+  }, 120_000);
+
+  it('stand in the document with their reason, the accepts-only fit beside', async () => {
+    const [alone, with_] = await Promise.all([pathOf(plain.id), pathOf(inferred.id)]);
+    const index = with_.crossValidation.oneStandardError;
+    await choose(modeller, inferred.id, { index, rule: 'one-standard-error' });
+    await scale(modeller, inferred.id);
+    const version = await freeze(modeller, modelId, inferred.id);
+    const words = await documentWords(version.id);
+    const result = (await modeller.get(`/api/versions/${version.id}/result`).expect(200)).body as Result;
+    expect(words).toContain(`Declined ${String(result.counts.declined)} rows [E-1] Reject inference parcelling: 8 score bands, bad rate times 2 Reason A third was declined [E-4]`);
+    expect(words).toContain('Its assumptions cannot be tested on accepted applications');
+    const beside = alone.crossValidation.oneStandardError;
+    expect(words).toContain(`Characteristics kept ${with_.kept[index]} ${alone.kept[beside]}`);
+    expect(words).toContain(`Hold-out, AUC ${result.metrics.holdOut?.auc.toFixed(3)} ${alone.holdOut[beside]?.auc.toFixed(3)}`);
+    const age = alone.characteristics.findIndex(({ column }) => column === 'age');
+    expect(words).toContain(`Age when applying (years) ${with_.coefficients[index][age].toFixed(4)} ${alone.coefficients[beside][age].toFixed(4)}`);
+    const { body } = await modeller.get(`/api/models/${modelId}/comparison?fits=${inferred.id},${plain.id}`).expect(200);
+    const [branch] = (body as Comparison).segments;
+    expect(words).toContain(`${branch.rows} ${branch.bads} ${branch.auc[0]?.toFixed(3)}`);
   }, 120_000);
 
   it('are not to be inferred where nobody is declined', async () => {

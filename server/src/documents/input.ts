@@ -1,5 +1,9 @@
 import { z } from 'zod';
+import { ComparedMetrics } from '@tallystone/contracts/comparison/schema';
 import { resultSchema } from '@tallystone/contracts/result/schema';
+import { CharacteristicBalance } from '@tallystone/contracts/samples/balance';
+import { RuleCounts, SensitivityCase } from '@tallystone/contracts/samples/definition';
+import { QualityGroup } from '@tallystone/contracts/samples/quality';
 import { specificationSchema } from '@tallystone/contracts/specification/schema';
 import { Challenge } from '@tallystone/contracts/validation/schema';
 import { Conclusion } from '@tallystone/contracts/versions/schema';
@@ -21,7 +25,7 @@ const count = z.int().nonnegative();
 const maybe = z.number().nullable();
 
 /** Sections of this edition, by their number in the table of contents. */
-export const writtenSections = [1, 2, 4, 5, 6, 8, 9, 10, 11, 15, 18] as const;
+export const writtenSections = [1, 2, 4, 5, 6, 7, 8, 9, 10, 11, 15, 18] as const;
 
 export const ModelFacts = z.strictObject({
   inventoryNumber: z.string(),
@@ -94,6 +98,9 @@ export const EvidenceItem = z.strictObject({
 
 export const ColumnLabel = z.strictObject({ column: z.string(), label: z.string(), unit: z.string().nullable() });
 
+/** What the dictionary says of a column beside its label and unit. */
+export const DictionaryLine = z.strictObject({ column: z.string(), description: z.string() });
+
 export const SourceFile = z.strictObject({
   evidence: cited,
   fileName: z.string(),
@@ -125,6 +132,15 @@ export const Windows = z.strictObject({
   outOfTime: z.strictObject({ from: time, to: time }).nullable(),
 });
 
+/** The outcome counted again with its indeterminates read otherwise, and what a rule on days past due takes at each of its parts. */
+export const OutcomeCounts = z.strictObject({
+  evidence: cited,
+  /** Empty where nothing is indeterminate; null where it was not counted. */
+  readings: z.array(SensitivityCase).nullable(),
+  /** Null where the outcome is by values. */
+  byRule: RuleCounts.nullable(),
+});
+
 /** The fit again with another outcome definition, for example indeterminates as bad. */
 export const Sensitivity = z.strictObject({
   evidence: cited,
@@ -141,8 +157,8 @@ export const ColumnQuality = z.strictObject({
   protected: z.boolean(),
   distinct: count,
   missing: count,
-  /** Each special code with its meaning and its rows. */
-  special: z.array(z.strictObject({ code: z.string(), meaning: z.string(), rows: count })),
+  /** Each special code with its meaning, its rows, and what the dictionary says is done about it. */
+  special: z.array(z.strictObject({ code: z.string(), meaning: z.string(), treatment: z.string().nullable(), rows: count })),
   /** As texts, numbers and dates alike. */
   smallest: z.string().nullable(),
   largest: z.string().nullable(),
@@ -160,6 +176,49 @@ export const RaisedFlag = z.strictObject({
   /** Whether the column takes part in the definition. */
   takesPart: z.boolean(),
   answer: z.strictObject({ answer: z.enum(['accepted', 'not used']), reason: z.string(), by: z.string(), at: time }).nullable(),
+});
+
+/** Development against the other partitions, characteristic by characteristic. */
+export const Balance = z.strictObject({ evidence: cited, characteristics: z.array(CharacteristicBalance) });
+
+/** What a column with the role of a segment splits. Of a protected one nothing is told. */
+export const Segment = z.strictObject({
+  column: z.string(),
+  protected: z.boolean(),
+  groups: z.array(QualityGroup),
+  /** The version's figures on the hold-out, by value; null where they were not made. `bads` and `auc` null where there are too few to read. */
+  holdOut: z
+    .strictObject({
+      evidence: cited,
+      values: z.array(z.strictObject({ value: z.string(), rows: count, bads: count.nullable(), auc: maybe })),
+    })
+    .nullable(),
+});
+
+/** The bad rate of the population against that of the sample; `shift` is added to the intercept in ln(good:bad). */
+export const Correction = z.strictObject({
+  evidence: cited,
+  sampleBadRate: z.number(),
+  populationBadRate: z.number(),
+  shift: z.number(),
+  reason: z.string().nullable(),
+});
+
+const measured = ComparedMetrics.nullable();
+
+/** The fit on accepted applicants alone that stands beside one with inference. */
+export const AcceptsOnly = z.strictObject({
+  evidence: cited,
+  name: z.string(),
+  number: z.int(),
+  chosenBy: z.string(),
+  lambda: z.number(),
+  kept: count,
+  development: measured,
+  holdOut: measured,
+  outOfTime: measured,
+  /** `own` of this version, `beside` of the other; 0 where not kept, null where it takes no part. */
+  coefficients: z.array(z.strictObject({ column: z.string(), own: maybe, beside: maybe })),
 });
 
 const binCounts = z.strictObject({ rows: count, goods: z.number().nonnegative(), bads: z.number().nonnegative() });
@@ -315,10 +374,21 @@ const parts = z.strictObject({
   sourceFile: SourceFile.nullable(),
   waterfall: Waterfall.nullable(),
   windows: Windows.nullable(),
+  outcomeCounts: OutcomeCounts.nullable(),
   sensitivity: Sensitivity.nullable(),
+  /** Null where no dictionary was written. */
+  dictionary: z.strictObject({ evidence: cited, lines: z.array(DictionaryLine) }).nullable(),
   quality: z.strictObject({ evidence: cited, rows: count, columns: z.array(ColumnQuality) }).nullable(),
   /** Null where no quality report was made. */
   qualityFlags: z.strictObject({ evidence: cited, madeAt: time, flags: z.array(RaisedFlag) }).nullable(),
+  balance: Balance.nullable(),
+  /** Null where nothing was counted; empty where no column has the role. */
+  segments: z.strictObject({ evidence: cited, columns: z.array(Segment) }).nullable(),
+  /** Null where none is stated, or where it was not kept. */
+  priorCorrection: Correction.nullable(),
+  /** Why declined applicants are inferred; null where it was not kept. */
+  inferenceReason: z.strictObject({ evidence: cited, reason: z.string() }).nullable(),
+  acceptsOnly: AcceptsOnly.nullable(),
   classing: z.strictObject({ evidence: cited, characteristics: z.array(ClassedCharacteristic) }).nullable(),
   outOfTime: OutOfTime,
   penaltyChoice: PenaltyChoice.nullable(),
@@ -392,6 +462,8 @@ export type DocumentInput = z.infer<typeof parts>;
 export type EvidenceItem = z.infer<typeof EvidenceItem>;
 export type AuthorText = z.infer<typeof AuthorText>;
 export type Signature = z.infer<typeof Signature>;
+export type Segment = z.infer<typeof Segment>;
+export type AcceptsOnly = z.infer<typeof AcceptsOnly>;
 export type Stability = z.infer<typeof Stability>;
 export type Replication = z.infer<typeof Replication>;
 export type ClassedCharacteristic = z.infer<typeof ClassedCharacteristic>;

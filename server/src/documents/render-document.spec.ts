@@ -175,6 +175,7 @@ describe('the document of a complete version', () => {
       '4 Population',
       '5 Outcome',
       '6 Data',
+      '7 Sample',
       '8 Classing',
       '9 Method',
       '10 Final model',
@@ -184,7 +185,7 @@ describe('the document of a complete version', () => {
     ]) {
       expect(words).toContain(title);
     }
-    expect(words).toContain('Sections 3, 7, 12, 13, 14, 16, 17 of the lender’s outline are not part of this edition');
+    expect(words).toContain('Sections 3, 12, 13, 14, 16, 17 of the lender’s outline are not part of this edition');
   });
 
   it('prints the cautions and how often the out-of-time figures were opened', () => {
@@ -192,6 +193,40 @@ describe('the document of a complete version', () => {
     expect(words).toContain('Qualified legal, compliance and validation staff decide');
     expect(words).toContain('opened 1 time before freezing');
     expect(words).toContain('its deviance is optimistic');
+  });
+
+  it('stands with the names that the dictionary gives, their units, and what is done about special codes', () => {
+    expect(words).toContain('Columns by their names [E-1] 1 column is not described and stands under its heading.');
+    expect(words).toContain('enquiries_6m Enquiries, 6 months – What enquiries_6m says of an applicant at application.');
+    expect(words).toContain('Card utilisation (%) number characteristic');
+    expect(words).toContain('Card utilisation -999 no bureau record Points of its own bin. 1 400');
+    expect(words).toContain('no bureau record not evidenced 1 404');
+  });
+
+  it('says what other readings of the indeterminates make of the bad rate', () => {
+    expect(words).toContain('it would be 9.7 % with every indeterminate good and 13.0 % with every one bad');
+    expect(words).toContain('all bad 9 000 1 350 13.0 % 3 857 779 16.8 %');
+  });
+
+  it('holds each characteristic against development, by the thresholds and by chance', () => {
+    expect(words).toContain(
+      '1 characteristic is spread differently than in development, with an index above 0.25: Months since arrears.',
+    );
+    expect(words).toContain('(1/N + 1/M) times a chi-square with B − 1 degrees of freedom');
+    expect(words).toMatch(/0\.009 0\.006 [^.]*below 0\.10,? more than/);
+  });
+
+  it('shows what segments split, reads no small one, and tells nothing of a protected one', () => {
+    expect(words).toContain('The bad rate runs from 8.2 % (Harbour) to 12.5 % (Marshes).');
+    expect(words).toContain('Harbour 14 000 7 800 700 8.2 % 7.7 % to 8.8 % 2 550 214 0.781');
+    expect(words).toContain('Islands 73 few few few – 8 few –');
+    expect(words).toContain('sex is protected: what it splits is not printed here');
+  });
+
+  it('prints the flags of the quality report with their answers, and counts alone those of columns that take no part', () => {
+    expect(words).toContain('accepted: A new channel was opened in');
+    expect(words).toContain('1 flag of 2 has no answer. 1 further flag is a note or of a column that takes no part.');
+    expect(words).not.toContain('Missing only for goods.');
   });
 
   it('is tagged, titled and in a language', () => {
@@ -214,12 +249,51 @@ describe('the document of a complete version', () => {
   });
 });
 
-describe('the flags of the quality report', () => {
-  it('stand with their answers, and those of columns that take no part are counted alone', async () => {
-    const words = wordsOf(await renderDocument(inventedInput(), { fixedDate }));
-    expect(words).toContain('accepted: A new channel was opened in');
-    expect(words).toContain('1 flag of 2 has no answer. 1 further flag is a note or of a column that takes no part.');
-    expect(words).not.toContain('Missing only for goods.');
+describe('a version with declined applicants and a prior correction', () => {
+  const input = inventedInput();
+  const kept = input.result.characteristics.filter(({ coefficient }) => coefficient);
+  const figures = {
+    rows: 4286,
+    bads: 429,
+    auc: 0.7702,
+    aucLower: 0.75,
+    aucUpper: 0.79,
+    ks: 0.41,
+    brier: 0.0815,
+    calibrationInTheLarge: -0.044,
+    calibrationSlope: 1.1,
+  };
+  beforeAll(() => {
+    input.specification.declined = { column: 'decision', values: ['declined'], method: 'parcelling', bands: 8, uplift: 2 };
+    input.specification.priorCorrection = { populationBadRate: 0.04 };
+    input.priorCorrection = { evidence: 'E-2', sampleBadRate: 0.1, populationBadRate: 0.04, shift: 0.980829, reason: 'Portfolio of 2024' };
+    input.inferenceReason = { evidence: 'E-2', reason: 'A third was declined' };
+    input.acceptsOnly = {
+      evidence: 'E-2',
+      name: 'Plain',
+      number: 3,
+      chosenBy: 'not chosen',
+      lambda: 0.005,
+      kept: 10,
+      development: figures,
+      holdOut: figures,
+      outOfTime: null,
+      coefficients: kept.map(({ column, coefficient }, place) => ({ column, own: coefficient, beside: place === 0 ? -0.1234 : coefficient })),
+    };
+  }); // prettier-ignore
+
+  it('says why, with the accepts-only fit beside it and its cautions', async () => {
+    const bytes = await renderDocument(input, { fixedDate });
+    const words = wordsOf(bytes);
+    expect(words).toContain('Reason Portfolio of 2024 [E-2]');
+    expect(words).toContain('Added to the intercept 0.980829 in ln(good:bad) [E-2]');
+    expect(words).toContain('Reject inference parcelling: 8 score bands, bad rate times 2');
+    expect(words).toContain('Reason A third was declined [E-2]');
+    expect(words).toContain('Its assumptions cannot be tested on accepted applications');
+    expect(words).toContain('Characteristics kept 11 10');
+    expect(words).toContain('Hold-out, AUC 0.774 0.770');
+    expect(words).toContain('Card utilisation: the sign changes.');
+    expect(outside(placedWords(bytes))).toEqual([]);
   }, 120_000);
 });
 
@@ -234,8 +308,12 @@ describe('a document with much missing', () => {
       sourceFile: null,
       waterfall: null,
       windows: null,
+      outcomeCounts: null,
+      dictionary: null,
       quality: null,
       qualityFlags: null,
+      balance: null,
+      segments: null,
       classing: null,
       outOfTime: { covered: true, openings: [] },
       penaltyChoice: null,
@@ -248,6 +326,8 @@ describe('a document with much missing', () => {
       history: null,
     };
     bare.result = { ...bare.result, crossValidation: null };
+    bare.specification.priorCorrection = { populationBadRate: 0.04 };
+    bare.specification.declined = { column: 'decision', values: ['declined'], method: 'fuzzy', bands: 10, uplift: 1.5 };
     const words = wordsOf(await renderDocument(bare, { fixedDate }));
     for (const what of [
       'Replication',
@@ -255,7 +335,14 @@ describe('a document with much missing', () => {
       'Recommendation (to be written by the author)',
       'Waterfall from the rows of the file to the rows of the sample',
       'Source file',
+      'Bad rate with indeterminates as good and as bad',
+      'Fit repeated with indeterminates as good and as bad',
+      'Dates of application by partition',
+      'Data dictionary',
       'Quality of the columns',
+      'Stability index by characteristic between the partitions',
+      'What segments split',
+      'Fit on accepted applicants alone',
       'Quality report',
       'Cross-validation',
       'Choice of the penalty',
@@ -269,6 +356,8 @@ describe('a document with much missing', () => {
     ]) {
       expect(words).toContain(`${what}: not evidenced.`);
     }
+    expect(words).toContain('Bad rate of the sample not evidenced Added to the intercept not evidenced Reason not evidenced');
+    expect(words).toContain('by the estimated PD Reason not evidenced');
     expect(words).toContain('Headline figures by partition [not evidenced]');
     expect(words).toContain('Out-of-time figures are covered and are not printed');
     expect(words).not.toContain('0.758');

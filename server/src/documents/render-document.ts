@@ -12,6 +12,7 @@ import { writeOutcome } from './sections/outcome';
 import { writePerformance } from './sections/performance';
 import { writePopulation } from './sections/population';
 import { writePurpose } from './sections/purpose';
+import { writeSample } from './sections/sample';
 import { writeSummary } from './sections/summary';
 import { writeValidation } from './sections/validation';
 import { colour, page } from './tokens';
@@ -51,6 +52,7 @@ export async function renderDocument(input: unknown, options: { fixedDate: Date 
     writePopulation,
     writeOutcome,
     writeData,
+    writeSample,
     writeClassing,
     writeMethod,
     writeFinalModel,

@@ -1,3 +1,4 @@
+import { labelWords } from '@tallystone/contracts/samples/labels';
 import type { DocumentInput } from '../input';
 import { timeText } from '../number-texts';
 import { colour, textBottom, type } from '../tokens';
@@ -29,18 +30,23 @@ export class Writer {
   private figures = 0;
   private bookmark: PDFKit.PDFOutline | null = null;
   private waiting: string | null = null;
-  private readonly labels: Map<string, string>;
+  private readonly columns: Map<string, DocumentInput['columns'][number]>;
 
   constructor(
     readonly sheet: Sheet,
     readonly input: DocumentInput,
   ) {
-    this.labels = new Map(input.columns.map(({ column, label }) => [column, label]));
+    this.columns = new Map(input.columns.map((entry) => [entry.column, entry]));
   }
 
   /** The label people use for a column, else its name in the file. */
   label(column: string): string {
-    return this.labels.get(column) ?? column;
+    return this.columns.get(column)?.label ?? column;
+  }
+
+  /** The same with its unit, where characteristics are listed: "Card utilisation (%)". */
+  labelWithUnit(column: string): string {
+    return labelWords({ column, label: this.label(column), unit: this.columns.get(column)?.unit ?? '' });
   }
 
   /** "[E-3]", "[record]" for what the record of actions holds, nothing for a list of evidence itself, or the words that say that there is none. */

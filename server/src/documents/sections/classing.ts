@@ -50,7 +50,7 @@ export function writeClassing(writer: Writer): void {
       ],
       rows: characteristics.map((entry) => ({
         cells: [
-          writer.label(entry.column),
+          writer.labelWithUnit(entry.column),
           whole(entry.bins.length),
           fixed(entry.informationValue, 3),
           fixed(entry.csi.holdOut, 3),
@@ -98,7 +98,7 @@ function writeBins(writer: Writer, entry: ResultCharacteristic, classed: Classed
   const drawn = entry.bins.some((bin) => logOdds(bin) !== null);
 
   writer.table(
-    writer.label(entry.column),
+    writer.labelWithUnit(entry.column),
     bothEvidences(input, classed),
     {
       columns: [

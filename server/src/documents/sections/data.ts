@@ -36,6 +36,8 @@ export function writeData(writer: Writer): void {
     ['Missing', data.missing.map((token) => (token === '' ? '(empty)' : token)).join(', ')],
   ]);
 
+  writeDictionary(writer);
+
   writer.heading('Quality by column');
   const { quality } = input;
   if (quality === null) writer.notEvidenced('Quality of the columns');
@@ -57,7 +59,7 @@ export function writeData(writer: Writer): void {
         ],
         rows: quality.columns.map((column) => ({
           cells: [
-            writer.label(column.column),
+            writer.labelWithUnit(column.column),
             column.type,
             column.protected ? `${column.role}, protected` : column.role,
             rate(column.missing, quality.rows),
@@ -94,6 +96,32 @@ export function writeData(writer: Writer): void {
   }
   writeFlags(writer);
   writer.authorTexts(6, ['Suitability of the sources']);
+}
+
+/** How the columns of the file are called elsewhere in the document. */
+function writeDictionary(writer: Writer): void {
+  const { dictionary, columns } = writer.input;
+  writer.heading('Data dictionary');
+  if (dictionary === null) {
+    writer.notEvidenced('Data dictionary');
+    return;
+  }
+  const named = new Map(columns.map((entry) => [entry.column, entry]));
+  const described = new Set(dictionary.lines.map(({ column }) => column));
+  const without = columns.filter(({ column }) => !described.has(column));
+  writer.table(
+    'Columns by their names',
+    dictionary.evidence,
+    {
+      columns: [{ title: 'Column', grow: 1 }, { title: 'Label', grow: 1 }, { title: 'Unit' }, { title: 'Description', grow: 3 }],
+      rows: dictionary.lines.map(({ column, description }) => ({
+        cells: [column, writer.label(column), named.get(column)?.unit ?? '–', description || '–'],
+      })),
+    },
+    without.length === 0
+      ? 'Every column of the file is described.'
+      : `${plural(without.length, 'column')} ${without.length === 1 ? 'is' : 'are'} not described and stand${without.length === 1 ? 's' : ''} under ${without.length === 1 ? 'its heading' : 'their headings'}.`,
+  );
 }
 
 /** What the quality report raised of columns that take part, and how each was answered. */
@@ -140,7 +168,14 @@ function writeSpecialCodes(writer: Writer): void {
   if (quality === null) return;
   const rows = quality.columns.flatMap((column) =>
     column.special.map((code) => ({
-      cells: [writer.label(column.column), code.code, code.meaning, whole(code.rows), rate(code.rows, quality.rows)],
+      cells: [
+        writer.label(column.column),
+        code.code,
+        code.meaning,
+        code.treatment ?? 'not evidenced',
+        whole(code.rows),
+        rate(code.rows, quality.rows),
+      ],
     })),
   );
   if (rows.length === 0) {
@@ -152,6 +187,7 @@ function writeSpecialCodes(writer: Writer): void {
       { title: 'Column', grow: 1 },
       { title: 'Code', align: 'right' },
       { title: 'Meaning', grow: 1 },
+      { title: 'Treatment beside a bin of its own', grow: 2 },
       { title: 'Rows', align: 'right' },
       { title: 'Share', align: 'right' },
     ],

@@ -38,7 +38,7 @@ export function writeFinalModel(writer: Writer): void {
         const [low, high] = [Math.min(...points), Math.max(...points)];
         return {
           cells: [
-            writer.label(entry.column),
+            writer.labelWithUnit(entry.column),
             entry.coefficient === null ? 'by bin' : fixed(entry.coefficient, 6),
             fixed(entry.informationValue, 3),
             points.length === 0 ? '–' : whole(low),
@@ -78,13 +78,13 @@ export function writeFinalModel(writer: Writer): void {
     rows: kept.flatMap((entry) =>
       entry.bins.map((bin, index) => ({
         cells: [
-          index === 0 ? writer.label(entry.column) : '',
+          index === 0 ? writer.labelWithUnit(entry.column) : '',
           bin.label,
           woe(bin.woe),
           fixed(bin.points, 4),
           whole(bin.pointsRounded),
         ],
-        under: index === 0 ? undefined : writer.label(entry.column),
+        under: index === 0 ? undefined : writer.labelWithUnit(entry.column),
       })),
     ),
     drawing: {

@@ -1,30 +1,8 @@
-import type { FitSettings, Specification } from '@tallystone/contracts/specification/types';
+import type { FitSettings } from '@tallystone/contracts/specification/types';
 import { drawPenaltyPath, mostRows, penaltyPathHeight } from '../charts/penalty-path';
 import { fixed, intervalText, percent, plural, significant, timeText, whole } from '../number-texts';
 import type { Writer } from '../page/writer';
-import { classingName, penaltyName, ruleName } from './wording';
-
-/** Which rows of declined applications entered, and how. */
-function inferenceText(declined: Specification['declined']): string {
-  if (declined === null || declined.method === 'none') return 'none: accepted applications only';
-  if (declined.method === 'reweighting') return 're-weighting: accepted applications weigh 1 / P(accept)';
-  if (declined.method === 'fuzzy') return 'fuzzy: each as a good and as a bad, by the estimated PD';
-  return `parcelling: ${declined.bands} score bands, bad rate times ${declined.uplift}`;
-}
-
-/** The intercept before and after; without a refit or a recalibration the one before stands on the path. */
-function writeCorrection(writer: Writer): void {
-  const { result, specification, resultEvidence } = writer.input;
-  if (specification.priorCorrection === null) return;
-  const before = result.path.find(({ lambda }) => lambda === result.lambda)?.intercept;
-  const moved =
-    before === undefined || specification.recalibration !== null || specification.fit.refit !== null
-      ? `The intercept is ${fixed(result.intercept, 4)} after it`
-      : `It moves the intercept from ${fixed(before, 4)} to ${fixed(result.intercept, 4)}`;
-  writer.text(
-    `The prior correction allows for a sample in which bads are more or less frequent than in the population (King and Zeng 2001, from memory). ${moved} ${writer.cite(resultEvidence)}; coefficients, the order of applicants, AUC and KS stay. Calibration in the large, which is measured on the sample, reads off by about as much.`,
-  );
-}
+import { classingName, inferenceText, penaltyName, ruleName } from './wording';
 
 /** 9 Method and selection. */
 export function writeMethod(writer: Writer): void {
@@ -56,7 +34,7 @@ export function writeMethod(writer: Writer): void {
       'Prior correction',
       specification.priorCorrection === null
         ? 'none'
-        : `to a bad rate of ${percent(specification.priorCorrection.populationBadRate)}`,
+        : `to a bad rate of ${percent(specification.priorCorrection.populationBadRate)}: see section 7`,
     ],
     ['Recalibration', specification.recalibration === null ? 'none' : 'intercept and slope refitted on hold-out, before scaling'],
     ['Reject inference', inferenceText(specification.declined)],
@@ -70,10 +48,9 @@ export function writeMethod(writer: Writer): void {
       'The optimality residual is above what is asked of a chosen fit: its coefficients are not the minimum to that precision.',
     );
 
-  writeCorrection(writer);
-  if (specification.declined !== null && declinedMethod !== 'none')
+  if (declinedMethod !== 'none')
     writer.caution(
-      'Declined applications enter WOE and fit by inference. Its assumptions cannot be tested on accepted applications (Hand and Henley 1993; Crook and Banasik 2004, both from memory). Performance is measured on known outcomes alone; the accepts-only fit stands beside it in section 11.',
+      'Declined applications enter WOE and fit by inference, under assumptions that cannot be tested on accepted applications: see section 7. Performance is measured on known outcomes alone.',
     );
 
   writer.heading('Penalty path');
@@ -216,7 +193,7 @@ function writeStability(writer: Writer): void {
         const coefficient = coefficients.get(entry.column) ?? null;
         return {
           cells: [
-            writer.label(entry.column),
+            writer.labelWithUnit(entry.column),
             coefficient === 0 ? '0' : fixed(coefficient, 4),
             percent(entry.selected, 0),
             percent(entry.sameSign, 0),

@@ -1,7 +1,8 @@
+import type { SensitivityCase } from '@tallystone/contracts/samples/definition';
 import { isByRule, listed, outcomeColumns, outcomeWords } from '@tallystone/contracts/specification/outcome';
 import type { Writer } from '../page/writer';
-import { area, fixed, plural, rate, whole } from '../number-texts';
-import { isCovered, partitions } from './wording';
+import { area, fixed, percent, plural, rate, timeText, whole } from '../number-texts';
+import { isCovered, partitionLabel, partitions } from './wording';
 
 /** 5 Outcome and windows. */
 export function writeOutcome(writer: Writer): void {
@@ -54,30 +55,135 @@ export function writeOutcome(writer: Writer): void {
           : 'They enter the fit by inference; the assumptions of the inference cannot be tested on accepted applications (Hand and Henley 1993; Crook and Banasik 2004, both from memory). No performance figure uses an inferred outcome.'),
     );
   }
-  const { sensitivity } = input;
+  writeByRule(writer);
+  writeReadings(writer);
+  writeRefits(writer);
+  writeWindows(writer);
+  writer.authorTexts(5, ['Justification']);
+}
+
+/** What each part of a rule on days past due takes, in the order it is asked. */
+function writeByRule(writer: Writer): void {
+  const { outcome } = writer.input.specification;
+  if (!isByRule(outcome)) return;
+  const { outcomeCounts } = writer.input;
+  const counts = outcomeCounts?.byRule ?? null;
+  if (outcomeCounts === null || counts === null) {
+    writer.notEvidenced('Rows by part of the rule');
+    return;
+  }
+  const words = outcomeWords(outcome);
+  const { daysPastDue: days, monthsOnBook: months } = outcome;
+  const parts: [string, string, number][] = [
+    ...(months === null
+      ? []
+      : [['Excluded', `${months.column} below ${months.least}`, counts.tooFewMonths] as [string, string, number]]),
+    ...(days.missing === 'excluded' ? [['Excluded', 'missing', counts.missing] as [string, string, number]] : []),
+    ['Bad', words.bad, counts.bads],
+    ...(days.indeterminate === null
+      ? []
+      : [['Indeterminate', words.indeterminate, counts.indeterminates] as [string, string, number]]),
+    ['Good', words.good, counts.goods],
+  ];
+  writer.table(
+    'What each part of the rule takes',
+    outcomeCounts.evidence,
+    {
+      columns: [{ title: 'Outcome' }, { title: 'Rule', grow: 1 }, { title: 'Rows', align: 'right' }],
+      rows: parts.map(([name, rule, rows]) => ({ cells: [name, rule, whole(rows)] })),
+    },
+    'Rows left after the exclusions; goods, bads and indeterminates without out-of-time.',
+  );
+}
+
+const readingName = { 'as they are': 'left out, as defined', 'as good': 'all good', 'as bad': 'all bad' } as const;
+
+/** How far the indeterminates can move the bad rate. */
+function writeReadings(writer: Writer): void {
+  const { outcomeCounts } = writer.input;
+  const readings = outcomeCounts?.readings ?? null;
   writer.heading('Sensitivity to the outcome definition');
-  if (sensitivity === null) writer.notEvidenced('Fit repeated with indeterminates as good and as bad');
-  else {
-    writer.table('The fit with other outcome definitions', sensitivity.evidence, {
+  if (outcomeCounts === null || readings === null) {
+    writer.notEvidenced('Bad rate with indeterminates as good and as bad');
+    return;
+  }
+  if (readings.length === 0) {
+    writer.text(`No row is indeterminate: the outcome has no other reading ${writer.cite(outcomeCounts.evidence)}.`);
+    return;
+  }
+  const rateOf = (wanted: SensitivityCase['indeterminates']): string =>
+    percent(readings.find(({ indeterminates }) => indeterminates === wanted)?.development.badRate);
+  writer.table(
+    'Outcome with the indeterminates read otherwise',
+    outcomeCounts.evidence,
+    {
       columns: [
-        { title: 'Definition', grow: 1 },
-        { title: 'Goods', align: 'right' },
-        { title: 'Bads', align: 'right' },
-        { title: 'Kept', align: 'right' },
-        { title: 'Gini', align: 'right' },
-        { title: 'Rank correlation', align: 'right' },
+        { title: 'Indeterminates', grow: 1 },
+        ...Array.from({ length: 2 }, () => [
+          { title: 'Goods', align: 'right' as const },
+          { title: 'Bads', align: 'right' as const },
+          { title: 'Bad rate', align: 'right' as const },
+        ]).flat(),
       ],
-      rows: sensitivity.cases.map((entry) => ({
+      spans: [
+        { title: '', columns: 1 },
+        { title: 'Development', columns: 3 },
+        { title: 'Hold-out', columns: 3 },
+      ],
+      rows: readings.map(({ indeterminates, development, holdOut }) => ({
         cells: [
-          entry.label,
-          whole(entry.goods),
-          whole(entry.bads),
-          whole(entry.kept),
-          area(entry.gini),
-          fixed(entry.rankCorrelation, 3),
+          readingName[indeterminates],
+          ...[development, holdOut].flatMap(({ goods, bads, badRate }) => [whole(goods), whole(bads), percent(badRate)]),
         ],
       })),
+    },
+    `The bad rate of development is ${rateOf('as they are')}; it would be ${rateOf('as good')} with every indeterminate good and ${rateOf('as bad')} with every one bad.`,
+  );
+  writer.note('The whole definition carried out again, the partition drawn again with it. Out-of-time is not counted here.');
+}
+
+/** The fit again on other outcomes. */
+function writeRefits(writer: Writer): void {
+  const { sensitivity } = writer.input;
+  if (sensitivity === null) {
+    writer.notEvidenced('Fit repeated with indeterminates as good and as bad');
+    return;
+  }
+  writer.table('The fit with other outcome definitions', sensitivity.evidence, {
+    columns: [
+      { title: 'Definition', grow: 1 },
+      { title: 'Goods', align: 'right' },
+      { title: 'Bads', align: 'right' },
+      { title: 'Kept', align: 'right' },
+      { title: 'Gini', align: 'right' },
+      { title: 'Rank correlation', align: 'right' },
+    ],
+    rows: sensitivity.cases.map((entry) => ({
+      cells: [
+        entry.label,
+        whole(entry.goods),
+        whole(entry.bads),
+        whole(entry.kept),
+        area(entry.gini),
+        fixed(entry.rankCorrelation, 3),
+      ],
+    })),
+  });
+}
+
+function writeWindows(writer: Writer): void {
+  writer.heading('Windows');
+  const { windows } = writer.input;
+  if (windows === null) writer.notEvidenced('Dates of application by partition');
+  else {
+    writer.table('Dates of application by partition', windows.evidence, {
+      columns: [{ title: 'Partition', grow: 1 }, { title: 'First' }, { title: 'Last' }],
+      rows: partitions.map((name) => {
+        const span = windows[name];
+        return {
+          cells: [partitionLabel[name], span === null ? '–' : timeText(span.from), span === null ? '–' : timeText(span.to)],
+        };
+      }),
     });
   }
-  writer.authorTexts(5, ['Justification']);
 }

@@ -1,7 +1,7 @@
 import type { Writer } from '../page/writer';
-import { fixed, percent, plural, rate, timeText, whole } from '../number-texts';
+import { percent, plural, whole } from '../number-texts';
 import { colour } from '../tokens';
-import { isCovered, partitionLabel, partitions } from './wording';
+import { partitions } from './wording';
 
 /** 4 Population and exclusions. */
 export function writePopulation(writer: Writer): void {
@@ -73,61 +73,5 @@ export function writePopulation(writer: Writer): void {
     );
     if (!reconciles) writer.caution('Exclusions that do not reconcile bar a version from being submitted.');
   }
-  writePartitions(writer);
   writer.authorTexts(4, ['Rationale']);
-}
-
-function writePartitions(writer: Writer): void {
-  const { input } = writer;
-  const { counts } = input.result;
-  writer.heading('Partitions');
-  const { partition } = input.specification;
-  writer.text(
-    'seed' in partition
-      ? `${partition.groups === undefined ? 'Goods and bads were split separately' : 'Whole groups were drawn'} with seed ${partition.seed}; a share of ${percent(partition.holdOutShare)} became hold-out. ` +
-          (partition.groups === undefined ? '' : `Rows of one ${partition.groups} were kept together. `) +
-          (partition.outOfTime === null
-            ? 'No out-of-time period is stated.'
-            : `Out-of-time: ${partition.outOfTime.column} from ${partition.outOfTime.from ?? 'the beginning'} to ${partition.outOfTime.to ?? 'the end'}.`)
-      : `The column ${partition.column} states the partition of each row.`,
-  );
-  writer.table('Rows by partition', input.resultEvidence, {
-    columns: [
-      { title: 'Partition', grow: 1 },
-      { title: 'Rows', align: 'right' },
-      { title: 'Goods', align: 'right' },
-      { title: 'Bads', align: 'right' },
-      { title: 'Indeterminates', align: 'right' },
-      { title: 'Bad rate', align: 'right' },
-      { title: 'Weight', align: 'right' },
-    ],
-    rows: partitions.map((name) => {
-      const entry = counts[name];
-      const covered = isCovered(input, name);
-      return {
-        cells: [
-          partitionLabel[name],
-          whole(entry.rows),
-          covered ? 'covered' : whole(entry.goods),
-          covered ? 'covered' : whole(entry.bads),
-          covered ? 'covered' : whole(entry.indeterminates),
-          covered ? 'covered' : rate(entry.bads, entry.goods + entry.bads),
-          covered ? 'covered' : fixed(entry.weight, Number.isInteger(entry.weight) ? 0 : 1),
-        ],
-      };
-    }),
-  });
-  const { windows } = input;
-  if (windows === null) writer.notEvidenced('Dates of application by partition');
-  else {
-    writer.table('Dates of application by partition', windows.evidence, {
-      columns: [{ title: 'Partition', grow: 1 }, { title: 'First' }, { title: 'Last' }],
-      rows: partitions.map((name) => {
-        const span = windows[name];
-        return {
-          cells: [partitionLabel[name], span === null ? '–' : timeText(span.from), span === null ? '–' : timeText(span.to)],
-        };
-      }),
-    });
-  }
 }

@@ -1,4 +1,5 @@
 import type { PartitionName } from '@tallystone/contracts/result/types';
+import type { Specification } from '@tallystone/contracts/specification/types';
 import type { DocumentInput } from '../input';
 import { area, fixed, intervalText, significant } from '../number-texts';
 
@@ -48,6 +49,14 @@ export const ruleName = {
   minimum: 'minimum-deviance rule',
   'one-standard-error': 'one-standard-error rule',
 } as const;
+
+/** Which rows of declined applications entered, and how. */
+export function inferenceText(declined: Specification['declined']): string {
+  if (declined === null || declined.method === 'none') return 'none: accepted applications only';
+  if (declined.method === 'reweighting') return 're-weighting: accepted applications weigh 1 / P(accept)';
+  if (declined.method === 'fuzzy') return 'fuzzy: each as a good and as a bad, by the estimated PD';
+  return `parcelling: ${declined.bands} score bands, bad rate times ${declined.uplift}`;
+}
 
 export const classingName = {
   once: 'classed once, on all development rows (cross-validation is then optimistic)',

@@ -105,7 +105,11 @@ export function inventedInput(count = 12): DocumentInput {
         writtenAt: '2026-11-20T11:05:00.000Z',
       },
     ],
-    columns: result.characteristics.map(({ column }, place) => ({ column, label: characteristic(place).label, unit: null })),
+    columns: result.characteristics.map(({ column }, place) => ({
+      column,
+      label: characteristic(place).label,
+      unit: place === 0 ? '%' : null,
+    })),
     evidence: [
       {
         number: 'E-1',
@@ -167,7 +171,30 @@ export function inventedInput(count = 12): DocumentInput {
       holdOut: { from: '2022-07-01', to: '2024-12-31' },
       outOfTime: { from: '2025-01-01', to: '2025-06-30' },
     },
+    outcomeCounts: {
+      evidence: 'E-1',
+      readings: (['as they are', 'as good', 'as bad'] as const).map((indeterminates, place) => ({
+        indeterminates,
+        development: {
+          goods: 9000 + (place === 1 ? 350 : 0),
+          bads: 1000 + (place === 2 ? 350 : 0),
+          badRate: [0.1, 0.09662, 0.13043][place],
+        },
+        holdOut: {
+          goods: 3857 + (place === 1 ? 350 : 0),
+          bads: 429 + (place === 2 ? 350 : 0),
+          badRate: [0.10009, 0.09254, 0.16804][place],
+        },
+      })),
+      byRule: null,
+    },
     sensitivity: null,
+    dictionary: {
+      evidence: 'E-1',
+      lines: result.characteristics
+        .slice(1)
+        .map(({ column }) => ({ column, description: `What ${column} says of an applicant at application.` })),
+    },
     quality: {
       evidence: 'E-1',
       rows: 24673,
@@ -178,7 +205,17 @@ export function inventedInput(count = 12): DocumentInput {
         protected: false,
         distinct: 120 + 37 * place,
         missing: place % 3 === 0 ? 0 : 210 * place,
-        special: place % 4 === 0 ? [{ code: '-999', meaning: 'no bureau record', rows: 1400 + place }] : [],
+        special:
+          place % 4 === 0
+            ? [
+                {
+                  code: '-999',
+                  meaning: 'no bureau record',
+                  treatment: place === 0 ? 'Points of its own bin.' : null,
+                  rows: 1400 + place,
+                },
+              ]
+            : [],
         smallest: column === 'employment' || column === 'region' ? null : '0',
         largest: column === 'employment' || column === 'region' ? null : '128.4',
         mostFrequent: column === 'employment' ? 'permanent' : column === 'region' ? 'Harbour' : '0',
@@ -212,6 +249,47 @@ export function inventedInput(count = 12): DocumentInput {
         { column: 'collections_fee', weight: 'look', finding: 'Missing only for goods.', takesPart: false, answer: null },
       ],
     },
+    balance: {
+      evidence: 'E-1',
+      characteristics: result.characteristics.map(({ column }, place) => {
+        const reading = (rows: number, index: number) => ({
+          rows,
+          index,
+          classes: 11,
+          smoothed: place === 7,
+          criticalValue: 0.0061,
+          pValue: 0.04,
+          largest: { label: '128 to under 4719', development: 0.101, compared: 0.101 + index },
+        });
+        return { column, holdOut: reading(4286, 0.002 + 0.001 * place), outOfTime: reading(2746, place === 2 ? 0.31 : 0.01) };
+      }),
+    },
+    segments: {
+      evidence: 'E-1',
+      columns: [
+        {
+          column: 'region',
+          protected: false,
+          groups: [
+            { label: 'Harbour', kind: 'values', rows: 14000, goods: 7800, bads: 700, unknown: 5500 },
+            { label: 'Marshes', kind: 'values', rows: 10600, goods: 5040, bads: 720, unknown: 4840 },
+            { label: 'Islands', kind: 'values', rows: 73, goods: 17, bads: 9, unknown: 47 },
+          ],
+          holdOut: {
+            evidence: 'E-2',
+            values: [
+              { value: 'Harbour', rows: 2550, bads: 214, auc: 0.7812 },
+              { value: 'Marshes', rows: 1728, bads: 215, auc: 0.7641 },
+              { value: 'Islands', rows: 8, bads: null, auc: null },
+            ],
+          },
+        },
+        { column: 'sex', protected: true, groups: [], holdOut: null },
+      ],
+    },
+    priorCorrection: null,
+    inferenceReason: null,
+    acceptsOnly: null,
     classing: {
       evidence: 'E-2',
       characteristics: result.characteristics.map(({ column, bins }, place) => ({

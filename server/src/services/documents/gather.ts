@@ -1,7 +1,9 @@
+import type { FitPath, FitSettings } from '@tallystone/contracts/fits/schema';
+import type { CharacteristicBalance } from '@tallystone/contracts/samples/balance';
 import { noLongerReplicable } from '@tallystone/contracts/samples/erased-words';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
-import type { SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
-import type { ColumnLabels } from '@tallystone/contracts/samples/dictionary';
+import type { RuleCounts, SampleDefinitionContent, SensitivityCase } from '@tallystone/contracts/samples/definition';
+import type { ColumnLabels, DictionaryEntry } from '@tallystone/contracts/samples/dictionary';
 import { takesPart } from '@tallystone/contracts/samples/flags';
 import type { QualityReport } from '@tallystone/contracts/samples/quality';
 import type { Result } from '@tallystone/contracts/result/types';
@@ -16,9 +18,10 @@ import { findModel } from '../models/find-model';
 import { readCover, findCovered } from '../out-of-time/cover';
 import { recordHead } from '../record/verify';
 import { actorOf } from '../people/actor-of';
+import type { SegmentGroups } from '../samples/quality/read-report';
 import type { ReplicationEvidence } from '../validation/replicate';
 import type { StabilityEvidence } from '../validation/stability';
-import type { ComparedWith } from '../versions/compared-with';
+import type { Beside } from '../versions/compared-with';
 import { type FoundEvidence, readEvidence } from '../versions/evidence';
 import { type FoundVersion, findVersion } from '../versions/find-version';
 
@@ -35,8 +38,14 @@ interface SampleEvidence {
   quality: { name: string; kind: string; profile: ColumnProfile }[];
   /** Absent in versions frozen before there were reports, null where none was made. */
   report?: QualityReport | null;
-  /** Absent in versions frozen before there was a dictionary. */
+  /** Absent in versions frozen before this was counted. */
+  counts?: { readonly sensitivity?: SensitivityCase[] | null; readonly byRule?: RuleCounts | null };
+  /** Absent in versions frozen before there was a dictionary, or from when its labels alone were kept; null where none was written. */
+  dictionary?: DictionaryEntry[] | null;
   labels?: ColumnLabels['labels'];
+  /** Absent in versions frozen before they were kept with it, null where they were not made. */
+  balance?: CharacteristicBalance[] | null;
+  segments?: SegmentGroups[] | null;
 }
 interface ClassingEvidence {
   edits: { column: string; edit: string; reason: { code: string; text: string } | null; by: string; at: string }[];
@@ -45,8 +54,17 @@ interface ClassingEvidence {
 }
 interface FitEvidence {
   choice: { rule: string; reason: string; by: string; at: string };
+  fit: { settings: Pick<FitSettings, 'declined' | 'priorCorrection'> };
+  /** Absent in versions frozen before it was kept with them. */
+  priorCorrection?: FitPath['priorCorrection'];
 }
-type PerformanceEvidence = Pick<VersionFigures, 'distributions' | 'bandCalibrations'> & { comparisons?: readonly ComparedWith[] };
+type PerformanceEvidence = Pick<VersionFigures, 'distributions' | 'bandCalibrations'> & Partial<Beside>;
+
+/** Evidence with its number in the document. */
+interface Numbered<Content> {
+  readonly content: Content;
+  readonly number: string;
+}
 
 /** Which section a text of the author stands in, and under what head. */
 const textPlaces: Record<VersionTextKey, { section: number; topic: string }> = {
@@ -94,7 +112,7 @@ export async function gatherDocument(context: Context, versionId: string, person
   const cover = await readCover(sequelize, await actorOf(personId), covered);
   const specification = JSON.parse(frozen.specification) as Specification;
   const result = JSON.parse(frozen.result) as Result;
-  const one = <T>(kind: FoundEvidence['kind']): { content: T; number: string } | null => {
+  const one = <T>(kind: FoundEvidence['kind']): Numbered<T> | null => {
     const entry = [...evidence].reverse().find((candidate) => candidate.kind === kind);
     return entry ? { content: entry.content as T, number: `E-${entry.number}` } : null;
   };
@@ -162,13 +180,20 @@ export async function gatherDocument(context: Context, versionId: string, person
     },
     waterfall: sample && waterfallOf(sample, specification, result),
     windows: sample && windowsOf(sample, specification),
+    outcomeCounts: sample && outcomeCountsOf(sample),
     sensitivity: null,
+    dictionary: sample && dictionaryOf(sample),
     quality: sample && {
       evidence: sample.number,
       rows: sample.content.rows,
-      columns: sample.content.quality.map(({ name, kind, profile }) => qualityOf(name, kind, profile, sample.content.definition)),
+      columns: sample.content.quality.map(({ name, kind, profile }) => qualityOf(name, kind, profile, sample.content)),
     },
     qualityFlags: sample && flagsOf(sample),
+    balance: sample?.content.balance ? { evidence: sample.number, characteristics: sample.content.balance } : null,
+    segments: sample && segmentsOf(sample, performance),
+    priorCorrection: fit && correctionOf(fit),
+    inferenceReason: fit && inferenceReasonOf(fit),
+    acceptsOnly: performance?.content.acceptsOnly ? { evidence: performance.number, ...acceptsOnlyOf(performance.content.acceptsOnly, shown) } : null,
     classing: classing && {
       evidence: classing.number,
       characteristics: classing.content.bins.map(({ column, holdOut, outOfTime }) => ({
@@ -237,14 +262,14 @@ function recorded(history: readonly HistoryLine[], version: FoundVersion, entry:
 
 const interval = (lower: number | null, upper: number | null): { lower: number; upper: number } | null => (lower === null || upper === null ? null : { lower, upper });
 
-function waterfallOf(sample: { content: SampleEvidence; number: string }, specification: Specification, result: Result): DocumentInput['waterfall'] {
+function waterfallOf(sample: Numbered<SampleEvidence>, specification: Specification, result: Result): DocumentInput['waterfall'] {
   const steps: NonNullable<DocumentInput['waterfall']>['steps'] = result.counts.excluded.map(({ reason, rows: taken, bads }) => ({ reason, rows: taken, bads }));
   if (specification.declined) steps.push({ reason: 'Declined applications, outcome not known', rows: result.counts.declined, bads: null });
   return { evidence: sample.number, sourceRows: sample.content.rows, steps };
 }
 
 /** Dates that the partitions span, as far as the specification states them and the column of dates tells. */
-function windowsOf(sample: { content: SampleEvidence; number: string }, { partition }: Specification): DocumentInput['windows'] {
+function windowsOf(sample: Numbered<SampleEvidence>, { partition }: Specification): DocumentInput['windows'] {
   if (!('seed' in partition) || partition.outOfTime === null) return null;
   const { column, from, to } = partition.outOfTime;
   const date = sample.content.quality.find(({ name }) => name === column)?.profile.date;
@@ -259,10 +284,12 @@ function windowsOf(sample: { content: SampleEvidence; number: string }, { partit
   };
 }
 
-function qualityOf(name: string, kind: string, profile: ColumnProfile, definition: SampleDefinitionContent): NonNullable<DocumentInput['quality']>['columns'][number] {
+function qualityOf(name: string, kind: string, profile: ColumnProfile, { definition, dictionary, report }: Pick<SampleEvidence, 'definition' | 'dictionary' | 'report'>): NonNullable<DocumentInput['quality']>['columns'][number] {
   const defined = definition.columns.find(({ column }) => column === name);
   const [most] = profile.hashed ? [] : profile.mostFrequent;
   const rowsOf = (value: string | number): number => profile.mostFrequent.find((entry) => entry.value === String(value))?.count ?? 0;
+  const treatments = dictionary?.find(({ column }) => column === name)?.treatments ?? [];
+  const treatmentOf = (value: string | number): string | null => treatments.find(({ code }) => code === String(value))?.treatment || null;
   return {
     column: name,
     type: kind,
@@ -270,24 +297,68 @@ function qualityOf(name: string, kind: string, profile: ColumnProfile, definitio
     protected: defined?.protected ?? false,
     distinct: profile.distinct,
     missing: profile.missing,
-    special: (defined?.special ?? []).flatMap(({ label, values }) => values.map((value) => ({ code: String(value), meaning: label, rows: rowsOf(value) }))),
+    special: (defined?.special ?? []).flatMap(({ label, values }) => values.map((value) => ({ code: String(value), meaning: label, treatment: treatmentOf(value), rows: rowsOf(value) }))),
     smallest: profile.numeric ? String(profile.numeric.smallest) : (profile.date?.first ?? null),
     largest: profile.numeric ? String(profile.numeric.largest) : (profile.date?.last ?? null),
     mostFrequent: most?.value ?? null,
     mostFrequentRows: most?.count ?? 0,
-    flags: profile.flags.map(({ finding }) => finding),
+    // The report knows better than reading did: codes that the definition names are no longer suspected.
+    flags: (report ? report.flags.filter(({ column }) => column === name) : profile.flags).map(({ finding }) => finding),
   };
 }
 
 /** Columns by the name that the dictionary had for them when the version was frozen: those of the file, and of the result in any case. */
 function columnsOf({ characteristics }: Result, sample: SampleEvidence | null): DocumentInput['columns'] {
-  const labels = new Map((sample?.labels ?? []).map((entry) => [entry.column, entry]));
+  const labels = new Map((sample?.dictionary ?? sample?.labels ?? []).map((entry) => [entry.column, entry]));
   const names = new Set([...characteristics.map(({ column }) => column), ...(sample?.quality ?? []).map(({ name }) => name)]);
   return [...names].map((column) => ({ column, label: labels.get(column)?.label || column, unit: labels.get(column)?.unit || null }));
 }
 
+/** Of columns that the dictionary describes; their labels and units stand with every column. */
+function dictionaryOf({ content, number }: Numbered<SampleEvidence>): DocumentInput['dictionary'] {
+  return content.dictionary ? { evidence: number, lines: content.dictionary.map(({ column, description }) => ({ column, description })) } : null;
+}
+
+/** Counted when the definition was confirmed; nothing of out-of-time is in it. */
+function outcomeCountsOf({ content, number }: Numbered<SampleEvidence>): DocumentInput['outcomeCounts'] {
+  return { evidence: number, readings: content.counts?.sensitivity ?? null, byRule: content.counts?.byRule ?? null };
+}
+
+function segmentsOf({ content, number }: Numbered<SampleEvidence>, performance: Numbered<PerformanceEvidence> | null): DocumentInput['segments'] {
+  if (!content.segments) return null;
+  const figures = performance?.content.segments ?? null;
+  return {
+    evidence: number,
+    columns: content.segments.map((segment) => ({
+      ...segment,
+      holdOut:
+        performance === null || figures === null
+          ? null
+          : {
+              evidence: performance.number,
+              values: figures.filter(({ column }) => column === segment.column).map(({ value, rows: count, bads, auc }) => ({ value, rows: count, bads, auc })),
+            },
+    })),
+  };
+}
+
+function correctionOf({ content, number }: Numbered<FitEvidence>): DocumentInput['priorCorrection'] {
+  const { priorCorrection } = content;
+  return priorCorrection ? { evidence: number, ...priorCorrection, reason: content.fit.settings.priorCorrection?.reason ?? null } : null;
+}
+
+function inferenceReasonOf({ content, number }: Numbered<FitEvidence>): DocumentInput['inferenceReason'] {
+  // Settings from before there was inference have none.
+  const { declined } = content.fit.settings as Partial<Pick<FitSettings, 'declined'>>;
+  return declined && declined.method !== 'none' ? { evidence: number, reason: declined.reason } : null;
+}
+
+function acceptsOnlyOf(beside: NonNullable<Beside['acceptsOnly']>, shown: (partition: string) => boolean): Omit<NonNullable<DocumentInput['acceptsOnly']>, 'evidence'> {
+  return { ...beside, coefficients: [...beside.coefficients], outOfTime: shown('outOfTime') ? beside.outOfTime : null };
+}
+
 /** What the quality report raised and how it was answered when the version was frozen. */
-function flagsOf({ content, number }: { content: SampleEvidence; number: string }): DocumentInput['qualityFlags'] {
+function flagsOf({ content, number }: Numbered<SampleEvidence>): DocumentInput['qualityFlags'] {
   if (!content.report) return null;
   const roles = new Map(content.report.columns.map(({ column, role }) => [column, role]));
   return {

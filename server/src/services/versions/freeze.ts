@@ -20,7 +20,7 @@ import { type FoundDefinition, findDefinition } from '../samples/definitions';
 import { loadColumns } from '../samples/load-columns';
 import { type LoadedScorecard, loadScorecard } from '../scorecards/load-scorecard';
 import { canonical } from '../specifications/build-specification';
-import { type ComparedWith, comparedWith } from './compared-with';
+import { type Beside, comparedWith } from './compared-with';
 import { addEvidence } from './evidence';
 import { versionEvidence } from './version-evidence';
 
@@ -74,7 +74,7 @@ export interface Freezing {
   readonly dataSha256: string;
   readonly specification: { text: string; sha256: string };
   readonly frozen: Frozen;
-  readonly compared: readonly ComparedWith[];
+  readonly beside: Beside;
 }
 
 /**
@@ -111,8 +111,8 @@ export async function replayForFreezing(
   if (!(distance <= 1e-9 * Math.max(1, fit.choice.lambda))) {
     throw new Error(`Replaying chose penalty ${place} where ${fit.choice.lambda} was chosen on the path`);
   }
-  const compared = await comparedWith(sequelize, fit, definition.content);
-  return { fit, definition, loaded, dataSha256, specification, frozen, compared };
+  const beside = await comparedWith(sequelize, fit, definition.content);
+  return { fit, definition, loaded, dataSha256, specification, frozen, beside };
 }
 
 /** Writes the version with its first act, its evidence and its record, in the transaction that ends the run. */
@@ -121,7 +121,7 @@ export async function writeVersion(
   tx: Transaction,
   run: { id: string; personId: string },
   note: string,
-  { fit, definition, loaded, dataSha256, specification, frozen, compared }: Freezing,
+  { fit, definition, loaded, dataSha256, specification, frozen, beside }: Freezing,
 ): Promise<{ versionId: string; number: number }> {
   const { sequelize } = context;
   await rows(sequelize, 'SELECT id FROM models WHERE id = $1 FOR UPDATE', [fit.modelId], tx);
@@ -157,7 +157,7 @@ export async function writeVersion(
     { transaction: tx },
   );
   await VersionTextsRow.create({ versionId, texts: {}, changedBy: run.personId }, { transaction: tx });
-  const pieces = await versionEvidence(sequelize, tx, { fit, definition, loaded, specification, result, fingerprint, dataSha256, frozen, compared });
+  const pieces = await versionEvidence(sequelize, tx, { fit, definition, loaded, specification, result, fingerprint, dataSha256, frozen, beside });
   for (const piece of pieces) await addEvidence(sequelize, tx, { ...piece, versionId, runId: run.id, personId: run.personId });
   await appendRecord(tx, {
     actor: await actorOf(run.personId, tx),

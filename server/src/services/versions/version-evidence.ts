@@ -1,7 +1,7 @@
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
-import { labelsOf } from '../samples/dictionary/find';
-import { reportOf } from '../samples/quality/read-report';
+import { entriesOf } from '../samples/dictionary/find';
+import { reportOf, segmentsOf } from '../samples/quality/read-report';
 import { codeVersionFacts } from './code-version';
 import type { NewEvidence } from './evidence';
 import type { Freezing } from './freeze';
@@ -12,7 +12,7 @@ type Piece = Pick<NewEvidence, 'kind' | 'title' | 'content'>;
 export async function versionEvidence(
   sequelize: Sequelize,
   tx: Transaction,
-  { fit, definition, loaded, specification, result, fingerprint, dataSha256, frozen, compared }: Freezing & { result: { text: string; sha256: string }; fingerprint: string },
+  { fit, definition, loaded, specification, result, fingerprint, dataSha256, frozen, beside }: Freezing & { result: { text: string; sha256: string }; fingerprint: string },
 ): Promise<Piece[]> {
   const [sample] = await rows<Record<string, unknown>>(
     sequelize,
@@ -33,12 +33,14 @@ export async function versionEvidence(
     [fit.binningId],
     tx,
   );
+  const balance = await rows<{ characteristics: unknown }>(sequelize, 'SELECT characteristics FROM sample_balances WHERE definition_id = $1', [definition.id], tx);
   const summaries = await rows<Record<string, unknown>>(
     sequelize,
     `SELECT column_name AS "column", summary ->> 'trend' AS trend, included, left_out_reason AS "leftOutReason" FROM binning_characteristics WHERE binning_id = $1 ORDER BY position`,
     [fit.binningId],
     tx,
   );
+  const [frozenPath] = await rows<{ shift: unknown }>(sequelize, `SELECT path -> 'priorCorrection' AS shift FROM fit_paths WHERE fit_id = $1`, [fit.id], tx);
   return [
     {
       kind: 'version',
@@ -53,13 +55,24 @@ export async function versionEvidence(
         rounding: loaded.settings.scaling.rounding,
       },
     },
-    { kind: 'sample', title: 'Raw file, exclusions, outcome and quality of the columns', content: { ...sample, report: await reportOf(sequelize, definition.id, tx), ...(await labelsOf(sequelize, definition.id, tx)) } },
+    {
+      kind: 'sample',
+      title: 'Raw file, dictionary, exclusions, outcome, partition and quality of the columns',
+      content: {
+        ...sample,
+        report: await reportOf(sequelize, definition.id, tx),
+        dictionary: await entriesOf(sequelize, definition.id, tx),
+        balance: balance.at(0)?.characteristics ?? null,
+        segments: await segmentsOf(sequelize, definition.id, tx),
+      },
+    },
     { kind: 'classing', title: 'Bins, counts by partition and edits by hand', content: { edits, characteristics: summaries, bins: frozen.figures.bins } },
     {
       kind: 'fit',
       title: 'Penalty path, cross-validation and the choice of the penalty',
       content: {
         fit: { id: fit.id, number: fit.number, name: fit.name, settings: fit.settings, createdBy: fit.createdByName },
+        priorCorrection: frozenPath?.shift ?? null,
         choice: fit.choice,
         path: frozen.result.path,
         crossValidation: frozen.result.crossValidation,
@@ -75,7 +88,7 @@ export async function versionEvidence(
         psi: frozen.result.psi,
         distributions: frozen.figures.distributions,
         bandCalibrations: frozen.figures.bandCalibrations,
-        comparisons: compared,
+        ...beside,
       },
     },
   ];

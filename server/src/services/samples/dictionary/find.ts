@@ -80,15 +80,21 @@ export async function writeDictionary(
   return saved;
 }
 
-/** Labels and units of the sample that a definition is of. */
-export async function labelsOf(sequelize: Sequelize, definitionId: string, tx: Transaction | null = null): Promise<ColumnLabels> {
+/** What the dictionary says of the sample that a definition is of; null where nothing was ever written. */
+export async function entriesOf(sequelize: Sequelize, definitionId: string, tx: Transaction | null = null): Promise<DictionaryEntry[] | null> {
   const [found] = await rows<{ entries: DictionaryEntry[] }>(
     sequelize,
     'SELECT y.entries FROM sample_definitions d JOIN sample_dictionaries y ON y.sample_id = d.sample_id WHERE d.id = $1',
     [definitionId],
     tx,
   );
-  const labels = (found?.entries ?? []).map(({ column, label, unit }) => ({ column, label, unit }));
+  return found?.entries ?? null;
+}
+
+/** Labels and units of the sample that a definition is of. */
+export async function labelsOf(sequelize: Sequelize, definitionId: string, tx: Transaction | null = null): Promise<ColumnLabels> {
+  const entries = (await entriesOf(sequelize, definitionId, tx)) ?? [];
+  const labels = entries.map(({ column, label, unit }) => ({ column, label, unit }));
   return { labels: labels.filter(({ label, unit }) => label !== '' || unit !== '') };
 }
 

@@ -97,6 +97,30 @@ export async function readColumnReport(
   return found.detail;
 }
 
+/** One segment column of a definition, by what it splits. */
+export interface SegmentGroups {
+  readonly column: string;
+  readonly protected: boolean;
+  /** Rows of the whole file; goods and bads of development and hold-out. */
+  readonly groups: ColumnQualityDetail['groups'];
+}
+
+/** What the report counted of each segment column; null where none was made. Of protected ones nothing but the name. */
+export async function segmentsOf(sequelize: Sequelize, definitionId: string, tx: Transaction | null = null): Promise<SegmentGroups[] | null> {
+  const [{ made }] = await rows<{ made: boolean }>(sequelize, 'SELECT EXISTS (SELECT 1 FROM quality_reports WHERE definition_id = $1) AS made', [definitionId], tx);
+  if (!made) return null;
+  const found = await rows<SegmentGroups>(
+    sequelize,
+    `SELECT q.detail ->> 'column' AS "column", q.detail -> 'groups' AS groups,
+            coalesce((SELECT (c ->> 'protected')::boolean FROM jsonb_array_elements(d.content -> 'columns') c WHERE c ->> 'column' = q.detail ->> 'column'), false) AS protected
+       FROM quality_columns q JOIN sample_definitions d ON d.id = q.definition_id
+      WHERE q.definition_id = $1 AND q.detail ->> 'role' = 'segment' ORDER BY q.position`,
+    [definitionId],
+    tx,
+  );
+  return found.map((segment) => (segment.protected ? { ...segment, groups: [] } : segment));
+}
+
 const keyOf = ({ column, code }: Pick<QualityFlag, 'column' | 'code'>): string => JSON.stringify([column, code]);
 
 /** The latest answer to each flag of a sample. */

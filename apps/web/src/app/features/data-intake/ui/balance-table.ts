@@ -1,8 +1,9 @@
 import { ChangeDetectionStrategy, Component, computed, input } from '@angular/core';
 import type { CharacteristicBalance } from '@tallystone/contracts/samples/balance';
+import { balanceFinding, byIndex, readingWords } from '@tallystone/contracts/samples/balance-reading';
 import { type Column } from '../../../ui/column';
 import { DenseTable } from '../../../ui/dense-table';
-import { balanceFinding, byIndex, movedMost, readingWords } from './balance-view';
+import { movedMost } from './balance-view';
 
 /** Each characteristic by partition against development, the most unlike first. Inputs only: it tells no outcome. */
 @Component({

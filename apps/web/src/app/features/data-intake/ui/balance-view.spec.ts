@@ -1,6 +1,7 @@
 import type { BalanceReading, CharacteristicBalance } from '@tallystone/contracts/samples/balance';
+import { balanceFinding, byIndex, readingWords } from '@tallystone/contracts/samples/balance-reading';
 import { describe, expect, it } from 'vitest';
-import { balanceFinding, byIndex, movedMost, readingWords } from './balance-view';
+import { movedMost } from './balance-view';
 
 const reading = (index: number, more: Partial<BalanceReading> = {}): BalanceReading => ({
   rows: 1000,
@@ -42,6 +43,7 @@ describe('the balance of the partitions', () => {
     expect(balanceFinding([entry('age', 0.01, 0.03), entry('home', 0.01, 0.005)])).toBe(
       'No index reaches 0.10; the largest is 0.030 (age). 1 of 4 indices is more than chance carries, where about 0 would be by chance alone.',
     );
+    expect(balanceFinding([entry('age', 0.01, 0.3)], (column) => `Years of ${column}`)).toContain('0.25: Years of age.');
     expect(balanceFinding([{ column: 'age', holdOut: null, outOfTime: null }])).toBe('There is no other partition to compare development with.');
   });
 });
