@@ -1,3 +1,4 @@
+import { execFileSync } from 'node:child_process';
 import { join } from 'node:path';
 import { fileURLToPath } from 'node:url';
 import type { Locator, Page } from '@playwright/test';
@@ -260,6 +261,21 @@ test('modeller: the cut-off has its notch in the scores from when it is stated',
   await expect(notch).toHaveAttribute('aria-valuetext', /^cut-off 480: approves [\d.]+\u202F%, bad rate [\d.]+\u202F%$/);
   await page.getByRole('button', { name: 'Discard changes' }).first().click();
   await expect(field).toHaveValue('470');
+  expect(takeProblems()).toEqual([]);
+});
+
+test('modeller: the report of quality prints whole, its header on every sheet', async ({ roomOf, demo }) => {
+  const { page, takeProblems } = await roomOf('modeller');
+  await present(page, wide, 'light');
+  await page.goto(`/models/${demo.modelId}/sample/${demo.sampleId}/quality`);
+  await expect(page.getByRole('heading', { name: 'Stability by month' })).toBeVisible();
+  const sheets = execFileSync('pdftotext', ['-layout', '-', '-'], { input: await page.pdf({ format: 'A4' }), encoding: 'utf8' }).split('\f');
+  const tables = sheets.filter((sheet) => /(characteristic|outcome) +[\d.]+\s?%/.test(sheet));
+  expect(tables.length).toBeGreaterThan(1);
+  // The last column of the table is the first that a sheet which is too narrow would lose.
+  for (const sheet of tables) expect(sheet).toMatch(/Column +Role +Missing .* Flags open/);
+  // Thirty-six months lie on the sheet to the last one with a name.
+  expect(sheets.join('')).toMatch(/2022.07 .* 2025.01/);
   expect(takeProblems()).toEqual([]);
 });
 
