@@ -2,6 +2,7 @@ import { populationStability, stabilityCriticalValue, stabilitySampling } from '
 import type { BalanceReading, CharacteristicBalance } from '@tallystone/contracts/samples/balance';
 import type { DefinedColumn } from '@tallystone/contracts/samples/definition';
 import type { DataReading } from '@tallystone/contracts/specification/types';
+import { allOthers, groupsOfNumbers, mostFrequent, placeAmong } from '../profiling/value-groups';
 import { cutLabels } from '../replay/bins';
 import { Columns } from '../replay/columns';
 import { type SourceColumn, type TextColumn, textsOf } from '../replay/source';
@@ -15,9 +16,6 @@ export interface BalancePayload {
   readonly prepared: Pick<Prepared, 'partition' | 'outcome'>;
 }
 
-/** Classes of the values that are neither special nor missing: deciles of development, or its most frequent categories. */
-const numericClasses = 10;
-const namedCategories = 19;
 /** Under this many rows expected in a class on either side, it is put together with the other small ones. */
 const fewExpected = 5;
 const level = 0.95;
@@ -82,11 +80,11 @@ function classesOf(
     const value = (code: number): number => numbers.number(code);
     const edges = decileEdges(regular, value, development);
     labels.push(...cutLabels(edges, 'left'));
-    for (const code of regular) classOf[code] = first + edges.filter((edge) => value(code) >= edge).length;
+    for (const code of regular) classOf[code] = first + placeAmong(edges, value(code));
   } else {
-    const frequent = [...regular].sort((a, b) => development[b] - development[a] || (texts[a] < texts[b] ? -1 : 1)).slice(0, namedCategories);
+    const frequent = mostFrequent(regular, development, texts);
     const place = new Map(frequent.map((code, index) => [code, index]));
-    labels.push(...frequent.map((code) => texts[code]), 'all others');
+    labels.push(...frequent.map((code) => texts[code]), allOthers);
     for (const code of regular) classOf[code] = first + (place.get(code) ?? frequent.length);
   }
   return { classOf, labels };
@@ -100,9 +98,9 @@ function decileEdges(codes: readonly number[], value: (code: number) => number, 
   let below = 0;
   let next = 1;
   for (const code of ordered) {
-    if (below >= (next * total) / numericClasses && below > 0) {
+    if (below >= (next * total) / groupsOfNumbers && below > 0) {
       if (edges.at(-1) !== value(code)) edges.push(value(code));
-      while (below >= (next * total) / numericClasses) next++;
+      while (below >= (next * total) / groupsOfNumbers) next++;
     }
     below += development[code];
   }

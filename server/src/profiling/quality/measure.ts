@@ -1,6 +1,8 @@
 import type { ColumnQualityDetail, QualityGroup } from '@tallystone/contracts/samples/quality';
 import { quantileOfSorted } from '@tallystone/numeric';
+import { cutLabels } from '../../replay/bins';
 import { NO_MONTH } from '../../replay/row-months';
+import { allOthers, groupsOfNumbers, mostFrequent, placeAmong } from '../value-groups';
 import { type ColumnValues, MISSING, SPECIAL, UNREADABLE, VALUE } from './read-column';
 
 /** What is known of each row beside the column itself. */
@@ -30,9 +32,6 @@ export interface ColumnMeasure {
 }
 
 const quantileShares = [0, 0.01, 0.05, 0.25, 0.5, 0.75, 0.95, 0.99, 1];
-/** Groups of about equal size: common practice for a stability index. */
-const groupsOfNumbers = 10;
-const groupsOfTexts = 19;
 const bars = 20;
 /** Outer fences: 3 interquartile ranges beyond the quartiles (J. W. Tukey, Exploratory Data Analysis, 1977, from memory). */
 const fence = 3;
@@ -146,11 +145,8 @@ function cutsOf(values: ColumnValues, facts: RowFacts, sorted: Float64Array): { 
     if (cut > sorted[0]) cuts.add(cut);
   }
   const edges = [...cuts].sort((a, b) => a - b);
-  const labels = [...edges, NaN].map((edge, k) =>
-    k === 0 ? `under ${String(edge)}` : Number.isNaN(edge) ? `${String(edges[k - 1])} and over` : `${String(edges[k - 1])} to under ${String(edge)}`,
-  ); // prettier-ignore
   // All of them one value in the first year: whatever is beyond it is the other group.
-  return edges.length === 0 ? { edges: [], labels: ['all values'] } : { edges, labels };
+  return { edges, labels: cutLabels(edges, 'left') };
 }
 
 function baseNumbers({ state, numbers }: ColumnValues, { month, baselineMonths }: RowFacts): Float64Array {
@@ -160,25 +156,19 @@ function baseNumbers({ state, numbers }: ColumnValues, { month, baselineMonths }
   return Float64Array.from(base).sort();
 }
 
-function placeAmong(edges: readonly number[], value: number): number {
-  let place = 0;
-  while (place < edges.length && value >= edges[place]) place++;
-  return place;
-}
-
 function placesOfTexts(
   { codes, texts, state }: ColumnValues,
   add: (label: string, kind: QualityGroup['kind']) => number,
 ): Uint8Array {
   const counts = new Float64Array(texts.length);
   if (codes) for (let row = 0; row < state.length; row++) if (state[row] === VALUE) counts[codes[row]]++;
-  const order = texts.map((_, code) => code).sort((a, b) => counts[b] - counts[a] || (texts[a] < texts[b] ? -1 : 1));
+  const shown = mostFrequent([...texts.keys()], counts, texts);
   const places = new Uint8Array(texts.length);
-  const shown = order.slice(0, groupsOfTexts);
   for (const code of shown) places[code] = add(texts[code].slice(0, 60), 'values');
-  if (order.length > shown.length) {
-    const other = add('all others', 'other');
-    for (const code of order.slice(groupsOfTexts)) places[code] = other;
+  if (texts.length > shown.length) {
+    const named = new Set(shown);
+    const other = add(allOthers, 'other');
+    for (const code of texts.keys()) if (!named.has(code)) places[code] = other;
   }
   return places;
 }
