@@ -97,9 +97,11 @@ const cell = fc.oneof(
 
 describe('the fast reader', () => {
   it('reads every well-formed file with line feeds, as the careful one does, cut anywhere', async () => {
+    // Six graphemes can be longer than the longest field, which is left to the careful reader.
+    const short = cell.filter((text) => Buffer.byteLength(text) <= 32);
     const table = fc
       .integer({ min: 1, max: 4 })
-      .chain((width) => fc.array(fc.array(cell, { minLength: width, maxLength: width }), { minLength: 1, maxLength: 30 }));
+      .chain((width) => fc.array(fc.array(short, { minLength: width, maxLength: width }), { minLength: 1, maxLength: 30 }));
     await fc.assert(
       fc.asyncProperty(table, sizes, fc.constantFrom(',', ';', '\t', '|'), fc.constantFrom('\n', '\r\n'), fc.boolean(), async (rows, cut, delimiter, end, quoted) => {
         const header = rows[0].map((_, place) => `c${place}`);
