@@ -6,7 +6,7 @@ import type { FitList } from '@tallystone/contracts/fits/schema';
 import type { Model, ModelList } from '@tallystone/contracts/models/schema';
 import type { SampleList } from '@tallystone/contracts/samples/schema';
 import type { VersionList } from '@tallystone/contracts/versions/schema';
-import type { Page } from '@playwright/test';
+import { type Page, expect } from '@playwright/test';
 
 /** Where the demo's things lie: the parts of the client's addresses. */
 export interface DemoPlaces {
@@ -46,10 +46,20 @@ export async function readDemoPlaces({ request }: Page): Promise<DemoPlaces> {
   };
 }
 
-/** Sends what the client would send, in the name of whoever is signed in on the page. Throws where it is refused. */
+/**
+ * Sends what the client would send, in the name of whoever is signed in on the page. Throws where it is refused.
+ *
+ * A page that was just opened may be waiting for the session's answer, which brings the token that changes need.
+ */
 export async function post<T>(page: Page, address: string, data: unknown): Promise<T> {
-  const token = (await page.context().cookies()).find(({ name }) => name === 'XSRF-TOKEN')?.value ?? '';
-  const response = await page.request.post(address, { data, headers: { 'X-XSRF-TOKEN': token, 'Idempotency-Key': randomUUID() } });
+  const find = async (): Promise<string | undefined> =>
+    (await page.context().cookies()).find(({ name }) => name === 'XSRF-TOKEN')?.value;
+  await expect.poll(find, 'the token of this browser').toBeDefined();
+  const token = (await find()) ?? '';
+  const response = await page.request.post(address, {
+    data,
+    headers: { 'X-XSRF-TOKEN': token, 'Idempotency-Key': randomUUID() },
+  });
   if (!response.ok()) throw new Error(`${response.status()} ${address}: ${await response.text()}`);
   return (await response.json()) as T;
 }
@@ -89,7 +99,11 @@ export async function bringIn(page: Page, modelId: string, fileName: string, tex
   const headers = { 'X-XSRF-TOKEN': token, 'Tus-Resumable': '1.0.0' };
   const bytes = Buffer.from(text);
   const begun = await page.request.post(`/api/models/${modelId}/uploads`, {
-    headers: { ...headers, 'Upload-Length': String(bytes.length), 'Upload-Metadata': `filename ${Buffer.from(fileName).toString('base64')}` },
+    headers: {
+      ...headers,
+      'Upload-Length': String(bytes.length),
+      'Upload-Metadata': `filename ${Buffer.from(fileName).toString('base64')}`,
+    },
   });
   const sent = await page.request.patch(begun.headers()['location'], {
     headers: { ...headers, 'Upload-Offset': '0', 'Content-Type': 'application/offset+octet-stream' },
