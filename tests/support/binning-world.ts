@@ -19,8 +19,11 @@ export interface BinningWorld {
   readonly binning: Binning;
 }
 
-export async function startBinningWorld(csv?: string): Promise<BinningWorld> {
-  const server = await IntakeServer.start();
+export async function startBinningWorld(
+  csv?: string,
+  options: Parameters<typeof IntakeServer.start>[0] = {},
+): Promise<BinningWorld> {
+  const server = await IntakeServer.start(options);
   const modeller = await server.signIn('marian', 'modeller');
   const colleague = await server.signIn('colin', 'modeller');
   const stranger = await server.signIn('oswin', 'modeller');

@@ -69,7 +69,8 @@ function routesOfEntry(entry: ts.ObjectLiteralExpression, file: string, above: s
 function importOf(arrow: ts.Expression, file: string): { module: string; member: string } {
   const call = ts.isArrowFunction(arrow) && ts.isCallExpression(arrow.body) ? arrow.body : null;
   const then = call && ts.isPropertyAccessExpression(call.expression) ? call.expression.expression : null;
-  const from = then && ts.isCallExpression(then) && then.expression.kind === ts.SyntaxKind.ImportKeyword ? then.arguments[0] : null;
+  const from =
+    then && ts.isCallExpression(then) && then.expression.kind === ts.SyntaxKind.ImportKeyword ? then.arguments[0] : null;
   const taken = call?.arguments[0];
   const member = taken && ts.isArrowFunction(taken) && ts.isPropertyAccessExpression(taken.body) ? taken.body.name.text : null;
   if (!from || !ts.isStringLiteral(from) || member === null) throw unread(arrow, file);

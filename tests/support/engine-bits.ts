@@ -9,8 +9,14 @@ function problem(): CodedProblem {
   const random = new Generator(21);
   const columns = Array.from({ length: 6 }, () => Float64Array.from({ length: ROWS }, () => (random.below(5) - 2) / 4));
   const linear = Float64Array.from({ length: ROWS }, () => random.uniform());
-  const outcome = Uint8Array.from({ length: ROWS }, (_, i) => (random.uniform() < 0.7 + 0.2 * columns[0][i] + 0.1 * columns[1][i] ? 1 : 0));
-  return { columns: [...codedColumns(columns), { kind: 'linear', values: linear }], outcome, penalty: { mixing: 1, standardize: true } };
+  const outcome = Uint8Array.from({ length: ROWS }, (_, i) =>
+    random.uniform() < 0.7 + 0.2 * columns[0][i] + 0.1 * columns[1][i] ? 1 : 0,
+  );
+  return {
+    columns: [...codedColumns(columns), { kind: 'linear', values: linear }],
+    outcome,
+    penalty: { mixing: 1, standardize: true },
+  };
 }
 
 /** The bits of a path and a cross-validation, as text. */

@@ -8,31 +8,31 @@ async function pause(): Promise<void> {
   await gate?.open;
 }
 
+const heldWhereBegun = ['fit.path', 'binning.complete'];
+
 /**
- * The worker's own handlers, of which a fit and a reading can be held while something happens under their hands: a fit where it has begun, a reading
- * where it has made its place and has stored nothing yet.
+ * The worker's own handlers, of which some runs can be held while something happens under their hands: a fit and the completing of a binning where they have
+ * begun, a reading where it has made its place and has stored nothing yet.
  *
  * @example
  * const server = await IntakeServer.start({ handlers: heldRuns.handlers });
  * const runId = await heldRuns.while(startFit, erase);
  */
 export const heldRuns = {
-  handlers: handlers.map(
-    (handler): Handler => ({
-      ...handler,
-      async work(payload, run) {
-        if (handler.definition.kind === 'fit.path') await pause();
-        await handler.work(payload, {
-          ...run,
-          async write(work) {
-            const written = await run.write(work);
-            if (handler.definition.kind === 'sample.read') await pause();
-            return written;
-          },
-        });
-      },
-    }),
-  ),
+  handlers: handlers.map((handler): Handler => ({
+    ...handler,
+    async work(payload, run) {
+      if (heldWhereBegun.includes(handler.definition.kind)) await pause();
+      await handler.work(payload, {
+        ...run,
+        async write(work) {
+          const written = await run.write(work);
+          if (handler.definition.kind === 'sample.read') await pause();
+          return written;
+        },
+      });
+    },
+  })),
 
   /** Starts a run, does something else once it is held, and lets it go on. */
   async while(start: () => Promise<string>, happens: () => Promise<unknown>): Promise<string> {

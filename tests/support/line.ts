@@ -15,7 +15,12 @@ async function succeeded(visitor: Visitor, runId: string): Promise<Run> {
   return run;
 }
 
-export async function fitPath(visitor: Visitor, modelId: string, binningId: string, settings: Record<string, unknown>): Promise<Fit> {
+export async function fitPath(
+  visitor: Visitor,
+  modelId: string,
+  binningId: string,
+  settings: Record<string, unknown>,
+): Promise<Fit> {
   const started = await visitor
     .post(`/api/models/${modelId}/fits`)
     .set('Idempotency-Key', key())
@@ -37,11 +42,16 @@ export async function scale(visitor: Visitor, fitId: string, change: Record<stri
   const scorecard = read.body as Scorecard;
   const texts = Object.fromEntries(scorecard.characteristics.map(({ column }) => [column, `Too few points for ${column}`]));
   const settings = { ...scorecard.settings, ...change, reasons: { ...scorecard.settings.reasons, texts } };
-  return (await visitor.put(`/api/fits/${fitId}/scorecard`).set('If-Match', read.headers.etag).send(settings).expect(200)).body as Scorecard;
+  return (await visitor.put(`/api/fits/${fitId}/scorecard`).set('If-Match', read.headers.etag).send(settings).expect(200))
+    .body as Scorecard;
 }
 
 export async function freeze(visitor: Visitor, modelId: string, fitId: string, note = 'First version'): Promise<Version> {
-  const started = await visitor.post(`/api/models/${modelId}/versions`).set('Idempotency-Key', key()).send({ fitId, note }).expect(202);
+  const started = await visitor
+    .post(`/api/models/${modelId}/versions`)
+    .set('Idempotency-Key', key())
+    .send({ fitId, note })
+    .expect(202);
   const run = await succeeded(visitor, (started.body as { runId: string }).runId);
   const { versionId } = run.result as { versionId: string };
   return (await visitor.get(`/api/versions/${versionId}`).expect(200)).body as Version;
@@ -72,12 +82,20 @@ export async function act(visitor: Visitor, versionId: string, body: Record<stri
 }
 
 export async function replicate(visitor: Visitor, versionId: string, method: 'same code' | 'independent'): Promise<Run> {
-  const started = await visitor.post(`/api/versions/${versionId}/replications`).set('Idempotency-Key', key()).send({ method }).expect(202);
+  const started = await visitor
+    .post(`/api/versions/${versionId}/replications`)
+    .set('Idempotency-Key', key())
+    .send({ method })
+    .expect(202);
   return succeeded(visitor, (started.body as { runId: string }).runId);
 }
 
 export async function studyStability(visitor: Visitor, versionId: string, resamples: number): Promise<Run> {
-  const started = await visitor.post(`/api/versions/${versionId}/stability`).set('Idempotency-Key', key()).send({ resamples, seed: 1 }).expect(202);
+  const started = await visitor
+    .post(`/api/versions/${versionId}/stability`)
+    .set('Idempotency-Key', key())
+    .send({ resamples, seed: 1 })
+    .expect(202);
   return succeeded(visitor, (started.body as { runId: string }).runId);
 }
 
