@@ -1,4 +1,3 @@
-import { summarise, type CrossValidation, type FoldResult } from '../penalised/folds';
 import { rowLoss } from '../penalised/loss';
 import { automaticGrid, type FitOptions } from '../penalised/path';
 import { violation } from '../penalised/penalty';
@@ -6,27 +5,18 @@ import type { Fit, Grid, Path } from '../penalised/problem';
 import { requireLambda } from '../penalised/validation';
 import type { CodedColumn, CodedProblem } from './coded-columns';
 import { Alone, type Crew } from './crew';
-import { FoldSheet } from './fold-batch';
+import { FoldsAlong, PATH_TOLERANCE, type EngineCrossValidation, type EngineFolds } from './cross-validation';
 import { follow, type Follower } from './follow';
 import type { KernelKind } from './kernels/kernels';
 import { copyPoint, pointOf, residualAt, type Lane, type Point } from './lane';
 import { layOut, LANES_SINGLE, type Layout, type LayoutOptions } from './layout';
 import { Passes, type Precision } from './passes';
 import { drawStratified, strataOf } from '../resampling/bootstrap';
-import { fromTables, fullStandardisation, ownStandardisation, weightSums, type Standardisation } from './standardisation';
+import { fullStandardisation, ownStandardisation, weightSums, type Standardisation } from './standardisation';
 import { solvePath, type Solved, type Target } from './wavefront';
-
-/** Largest optimality residual of path points and folds unless another is asked for. */
-export const PATH_TOLERANCE = 1e-6;
 
 /** What singles are asked for: their rounding adds some 1e-7 to the residual. */
 const SINGLE_TOLERANCE = 9e-7;
-
-/**
- * Share of the tolerance that folds are asked for. Of few rows, what a fold that is left out misses weighs more, and their sums are exact enough to ask for less.
- */
-const FOLD_SHARE = 0.9;
-const FOLD_SHARE_OF_FEW = 0.3;
 
 /** Where doubles prove a point, singles stop that many times above what is asked for: the model's next step, which needs no pass, takes a point the rest of the way. */
 const SINGLES_STOP = 5;
@@ -43,58 +33,6 @@ export interface EngineOptions {
   readonly counted?: boolean;
 }
 
-export interface EngineFolds {
-  readonly tolerance?: number;
-  /** Values by code of each column in a fold (number from 1), computed from its training rows; null = those of the problem. */
-  readonly valuesForFold?: (fold: number) => readonly ArrayLike<number>[] | null;
-  readonly onFold?: (done: number, count: number) => void;
-  /** Share of the work done, after every pass. */
-  readonly onProgress?: (share: number) => void;
-  readonly onFoldFit?: (
-    fold: number,
-    index: number,
-    fit: { intercept: number; coefficients: Float64Array; optimalityResidual: number },
-  ) => void;
-}
-
-/** Folds `first` to `end - 1` (from 0) that are followed together. */
-export interface FollowedFolds {
-  readonly guide: readonly Point[];
-  readonly lambdas: readonly number[];
-  readonly first: number;
-  readonly end: number;
-  readonly tolerance: number;
-  /** Values by code of each column in a fold; null = those of the problem. */
-  readonly valuesFor: (fold: number) => readonly ArrayLike<number>[] | null;
-}
-
-export interface FoldArrival {
-  /** From 0. */
-  readonly fold: number;
-  readonly place: number;
-  /** Mean deviance over the fold. */
-  readonly deviance: number;
-  readonly residual: number;
-  readonly fit: () => { intercept: number; coefficients: Float64Array };
-}
-
-export interface FoldEvents {
-  readonly onArrival: (arrival: FoldArrival) => void;
-  /** A fold was given up at a place. */
-  readonly onFailure: (fold: number, place: number) => void;
-  /** Share of the work that is done, after every pass; it may throw to stop. */
-  readonly onPass?: (share: number) => void;
-}
-
-/** Where no fit was asked for. */
-const none = { intercept: NaN, coefficients: new Float64Array(0) };
-
-/** Folds that did not converge have no deviances: `null`. */
-export interface EngineCrossValidation {
-  readonly folds: readonly (FoldResult | null)[];
-  readonly optimalityResidual: number;
-}
-
 /**
  * The fast solver for one problem: laid out once, then asked for paths, folds and single fits. Definitions are those of `penalised/`; every reported fit
  * carries the residual of its exact gradient in double precision.
@@ -104,6 +42,7 @@ export class Engine {
   readonly layout: Layout;
   readonly passes: Passes;
   readonly full: Standardisation;
+  readonly folds: FoldsAlong;
   private guide: { lambdas: readonly number[]; points: readonly Point[] } | null = null;
   private begun: Point | null = null;
 
@@ -122,6 +61,15 @@ export class Engine {
     });
     this.passes = new Passes(this.layout, crew);
     this.full = fullStandardisation(problem, this.layout);
+    this.folds = new FoldsAlong({
+      problem,
+      folds: options.folds,
+      layout: this.layout,
+      passes: this.passes,
+      full: this.full,
+      delegate: crew.delegate,
+      unscaled: (point, s) => this.unscaled(point, s),
+    });
   }
 
   /** Lets the crew go. */
@@ -386,130 +334,7 @@ export class Engine {
 
   /** Folds at exactly the given lambdas, several at once; of few rows, half of the folds by another thread where the crew has one. */
   crossValidate(lambdas: readonly number[], options: EngineFolds = {}): EngineCrossValidation {
-    const { layout } = this;
-    const count = layout.folds;
-    const guide = this.guideTo(lambdas);
-    const share = layout.isWhole ? FOLD_SHARE_OF_FEW : FOLD_SHARE;
-    const tolerance = share * Math.max(PATH_TOLERANCE, options.tolerance ?? PATH_TOLERANCE);
-    const deviances = Array.from({ length: count }, () => new Float64Array(lambdas.length));
-    const failed = new Uint8Array(count);
-    let optimalityResidual = 0;
-    let finished = 0;
-    const valuesFor = (fold: number) => options.valuesForFold?.(fold + 1) ?? null;
-    const arrive = ({ fold, place, deviance, residual, fit }: FoldArrival): void => {
-      deviances[fold][place] = deviance;
-      optimalityResidual = Math.max(optimalityResidual, residual);
-      options.onFoldFit?.(fold + 1, place, { ...fit(), optimalityResidual: residual });
-      if (place === lambdas.length - 1) options.onFold?.(++finished, count);
-    };
-    const fail = (fold: number): void => void (failed[fold] = 1);
-    const own = (first: number, end: number): void => {
-      for (let from = first; from < end; from += LANES_SINGLE) {
-        const to = Math.min(end, from + LANES_SINGLE);
-        this.followBatch(
-          { guide, lambdas, first: from, end: to, tolerance, valuesFor },
-          {
-            onArrival: arrive,
-            onFailure: fail,
-            onPass: (share) => options.onProgress?.((from + share * (to - from)) / count),
-          },
-        );
-      }
-    };
-    const half = Math.ceil(count / 2);
-    const collect = this.delegate(
-      { guide, lambdas, first: half, end: count, tolerance, valuesFor },
-      options.onFoldFit !== undefined,
-    );
-    own(0, collect ? half : count);
-    if (collect && !collect(arrive, fail)) own(half, count);
-    const folds = deviances.map((deviance, fold) =>
-      failed[fold] !== 0 ? null : { fold: fold + 1, weight: layout.foldWeights[fold], deviance: Array.from(deviance) },
-    );
-    return { folds, optimalityResidual };
-  }
-
-  /**
-   * Offers folds to another thread. Only where curvatures are of all rows does a fold not depend on those it is followed beside, and only then may it be
-   * followed elsewhere.
-   * @returns takes what was found, false when nobody did it; null when nobody was asked
-   */
-  private delegate(
-    folds: FollowedFolds,
-    withFits: boolean,
-  ): ((arrive: (arrival: FoldArrival) => void, fail: (fold: number) => void) => boolean) | null {
-    const { layout, problem, options } = this;
-    const send = options.crew?.delegate;
-    const { first, end, lambdas, guide, tolerance, valuesFor } = folds;
-    if (!send || !options.folds || first >= end || !layout.isWhole) return null;
-    const columns = withFits ? problem.columns.length : 0;
-    const sheet = new FoldSheet(
-      new SharedArrayBuffer(FoldSheet.bytes(end - first, lambdas.length, columns)),
-      lambdas.length,
-      columns,
-    );
-    const values = Array.from({ length: end - first }, (_, k) => valuesFor(first + k));
-    const batch = { problem, folds: options.folds, lambdas, guide, tolerance, values, first, end, withFits };
-    send({ ...batch, sheet: sheet.buffer });
-    return (arrive, fail) => {
-      if (!sheet.collect()) return false;
-      for (let fold = first; fold < end; fold++) {
-        for (let place = 0; place < lambdas.length; place++) {
-          const { deviance, residual, fit } = sheet.read(fold - first, place);
-          if (Number.isNaN(deviance)) {
-            fail(fold);
-            break;
-          }
-          arrive({ fold, place, deviance, residual, fit: () => fit ?? none });
-        }
-      }
-      return true;
-    };
-  }
-
-  /** Follows at most 16 folds along the guide together. */
-  followBatch(folds: FollowedFolds, told: FoldEvents): void {
-    const { layout, problem, full } = this;
-    const { first, end, lambdas, guide, tolerance, valuesFor } = folds;
-    const size = layout.columns.length;
-    const followers = Array.from({ length: end - first }, (_, k): Follower => {
-      const fold = first + k;
-      const sums = weightSums(layout, (other) => other !== fold);
-      const own = valuesFor(fold);
-      const standardisation = own
-        ? fromTables(problem, layout, sums, (source) => own[source])
-        : ownStandardisation(problem, layout, full, sums);
-      return {
-        point: pointOf(size),
-        standardisation,
-        leftOut: fold,
-        heldOut: 0,
-        heldOutGradient: new Float64Array(size + 1),
-        place: 0,
-        passes: 0,
-        failed: false,
-      };
-    });
-    follow(this.passes, followers, {
-      guide,
-      full,
-      lambdas,
-      tolerance,
-      counted: false,
-      onPass: () => {
-        const places = followers.reduce((sum, { place }) => sum + place, 0);
-        told.onPass?.(places / (followers.length * lambdas.length));
-      },
-      onArrival: (lane, place, residual, heldOut) =>
-        told.onArrival({
-          fold: first + lane,
-          place,
-          deviance: 2 * heldOut,
-          residual,
-          fit: () => this.unscaled(followers[lane].point, followers[lane].standardisation),
-        }),
-    });
-    followers.forEach((follower, k) => follower.failed && told.onFailure(first + k, follower.place));
+    return this.folds.crossValidate(this.guideTo(lambdas), lambdas, options);
   }
 
   /**
@@ -581,26 +406,28 @@ export class Engine {
 
   /** Residual of points on the scale of x in double precision: what a fit found otherwise is worth. */
   residualOf(lambda: number, fit: { intercept: number; coefficients: ArrayLike<number> }, leftOutFold = 0): number {
+    const { problem, layout, options } = this;
+    const { folds } = options;
+    if (leftOutFold > 0 && layout.byRow && folds) {
+      // Doubles leave no row out by counts: the rows of the fold weigh nothing.
+      const weights = Float64Array.from(folds, (fold, i) =>
+        fold === leftOutFold ? 0 : problem.weights ? problem.weights[i] : 1,
+      );
+      return new Engine({ ...problem, weights }, { kernels: options.kernels }).residualOf(lambda, fit);
+    }
     const standardisation =
       leftOutFold === 0
         ? this.full
         : ownStandardisation(
-            this.problem,
-            this.layout,
+            problem,
+            layout,
             this.full,
-            weightSums(this.layout, (f) => f !== leftOutFold - 1),
+            weightSums(layout, (f) => f !== leftOutFold - 1),
           );
     const lane: Lane = { point: this.pointFrom(fit), standardisation, leftOut: leftOutFold - 1, heldOut: 0 };
     this.passes.run([lane], 'double');
     return residualAt(lane.point, standardisation, lambda);
   }
-}
-
-/** The folds' summary, as `crossValidate` gives it. @throws never; `null` while a fold is missing */
-export function summariseFolds(lambdas: readonly number[], result: EngineCrossValidation): CrossValidation | null {
-  const folds = result.folds.flatMap((fold) => (fold ? [fold] : []));
-  if (folds.length < result.folds.length) return null;
-  return { ...summarise(lambdas, folds), optimalityResidual: result.optimalityResidual, converged: true };
 }
 
 export type { Precision };

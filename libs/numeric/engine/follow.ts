@@ -22,6 +22,8 @@ export interface FollowOptions {
   readonly tolerance: number;
   /** Rows count as the passes' counts say. */
   readonly counted: boolean;
+  /** Mean loss over the fold that a lane leaves out at a point, where passes do not tell it. */
+  readonly lossLeftOut?: (lane: number, at: Point) => number;
   /** After every pass; it may throw to stop. */
   readonly onPass?: () => void;
   /** A follower has arrived at a place, with its point; `heldOut` is its mean loss over the fold that it leaves out. */
@@ -162,13 +164,16 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
 
   /**
    * Mean loss over the fold left out at the optimum that the last pass is within the tolerance of. The penalised optimum is no optimum of that loss, so
-   * what is left of the way changes it in the first order: the exact gradient over the fold times the model's last step takes that away.
+   * what is left of the way changes it in the first order: the model's last step leads to where it is taken, or its exact gradient over the fold times that step
+   * takes the change away.
    */
   function heldOutLoss(lane: number): number {
     const follower = followers[lane];
     const { leftOut, point, heldOut, heldOutGradient, standardisation } = follower;
-    if (leftOut < 0 || !heldOutGradient) return NaN;
+    if (leftOut < 0) return NaN;
     states[lane].model.solve(curvatureFor(lane), standardisation, lambdas[follower.place], point, finish, goal);
+    if (options.lossLeftOut) return options.lossLeftOut(lane, finish);
+    if (!heldOutGradient) return NaN;
     let change = heldOutGradient[0] * (finish.intercept - point.intercept);
     for (let j = 0; j < size; j++) change += heldOutGradient[j + 1] * (finish.t[j] - point.t[j]);
     return heldOut / passes.layout.foldWeights[leftOut] + change;

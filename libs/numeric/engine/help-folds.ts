@@ -8,7 +8,7 @@ export function helpFolds(batch: FoldBatch): void {
   if (!sheet.take()) return;
   try {
     const engine = new Engine(problem, { folds });
-    engine.followBatch(
+    engine.folds.followBatch(
       { guide, lambdas, first, end, tolerance, valuesFor: (fold) => values[fold - first] },
       {
         onArrival: ({ fold, place, deviance, residual, fit }) =>

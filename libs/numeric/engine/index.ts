@@ -3,11 +3,5 @@ export { Alone, Team, help, type Crew, type HelpOrder } from './crew';
 export { ENGINE_ROWS, fastCrossValidation, fastFit, fastPath, fastResamples, type EngineChoice, type SolvedBy } from './dispatch';
 export { helpFolds } from './help-folds';
 export type { FoldBatch } from './fold-batch';
-export {
-  Engine,
-  PATH_TOLERANCE,
-  summariseFolds,
-  type EngineCrossValidation,
-  type EngineFolds,
-  type EngineOptions,
-} from './engine';
+export { PATH_TOLERANCE, summariseFolds, type EngineCrossValidation, type EngineFolds } from './cross-validation';
+export { Engine, type EngineOptions } from './engine';

@@ -81,6 +81,22 @@ export class LaneModel {
     for (let k = 0; k < size; k++) rest[k] += step * hessian[row + k];
   }
 
+  /** Takes the rest along the steps of the free coordinates, four rows of the matrix at a time. */
+  private takeAlong(hessian: Float64Array, count: number): void {
+    const { size, rest, free, step } = this;
+    let a = 0;
+    for (; a + 3 < count; a += 4) {
+      const [s0, s1, s2, s3] = [step[a], step[a + 1], step[a + 2], step[a + 3]];
+      const [r0, r1, r2, r3] = [free[a] * size, free[a + 1] * size, free[a + 2] * size, free[a + 3] * size];
+      for (let k = 0; k < size; k++)
+        rest[k] += s0 * hessian[r0 + k] + s1 * hessian[r1 + k] + (s2 * hessian[r2 + k] + s3 * hessian[r3 + k]);
+    }
+    for (; a < count; a++) {
+      const row = free[a] * size;
+      for (let k = 0; k < size; k++) rest[k] += step[a] * hessian[row + k];
+    }
+  }
+
   /** One sweep of coordinate descent; returns the largest violation met. */
   private sweep(hessian: Float64Array, s: Standardisation, lambda: number, t: Float64Array, tolerance: number): number {
     const { size, rest } = this;
@@ -136,8 +152,11 @@ export class LaneModel {
     }
     for (let a = 0; a < count; a++) {
       const j = free[a];
-      this.move(hessian, t, j, j === stopper ? stop : t[j] + length * step[a]);
+      const target = j === stopper ? stop : t[j] + length * step[a];
+      step[a] = target - t[j];
+      t[j] = target;
     }
+    this.takeAlong(hessian, count);
     return stopper >= 0;
   }
 

@@ -92,8 +92,10 @@ export interface Layout {
   readonly rowsOfFold: readonly number[];
   readonly blocks: number;
   readonly chunks: number;
-  /** A chunk lies in one fold. */
+  /** A chunk lies in one fold, unless folds are left out by row: then there are none of a fold's own. */
   readonly chunksOfFold: readonly { readonly start: number; readonly end: number }[];
+  /** Folds are left out row by row, by counts of 0 and 1: chunks of so few rows would cost more to begin and end than their rows do. */
+  readonly byRow: boolean;
   /** Units of the large sample, and of the small one; the same where there are few rows. */
   readonly gramUnits: Readonly<Record<Sample, GramUnits>>;
   /** Curvatures are of all rows, because there are few. */
@@ -117,6 +119,8 @@ export interface LayoutOptions {
   readonly kernels?: KernelKind;
   /** Threads that may work on it, with the caller. */
   readonly workers?: number;
+  /** Folds are left out by row; absent = where there are few rows. */
+  readonly byRow?: boolean;
   /** Room for counts by row and lane: what resamples need. */
   readonly counted?: boolean;
   /** A layout of the same problem but for some columns (their numbers): packs without one of them are taken over as they are. */
@@ -139,7 +143,8 @@ class Addresses {
   }
 }
 
-const PACKED_ABOVE_ROWS = 5000;
+/** Below, codes are packed less densely and folds are left out by row: what a pass does for each code, and for each chunk, weighs more than what it does for each row. */
+const FEW_ROWS = 5000;
 
 /** Lays a problem out: rows with weight, sorted by fold, in blocks that lie in one fold. */
 export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layout {
@@ -166,7 +171,7 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
 
   const codedPlaces = columns.flatMap((column, j) => (column.kind === 'coded' ? [j] : []));
   const linearPlaces = columns.flatMap((column, j) => (column.kind === 'linear' ? [j] : []));
-  const most = rows >= PACKED_ABOVE_ROWS ? 256 : 64;
+  const most = rows >= FEW_ROWS ? 256 : 64;
   const binsOf = codedPlaces.map((j) => columns[j].values.length);
   const { packs, kept } = earlier ? repacked(earlier, codedPlaces, binsOf, most) : { packs: packColumns(binsOf, most), kept: [] };
   const internal: InternalColumn[] = [];
@@ -183,7 +188,15 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
   const codesOfPacks = packs.reduce((sum, { codes }) => sum + codes, 0);
 
   const chunkRows = Math.min(MOST_CHUNK_ROWS, Math.max(LEAST_CHUNK_ROWS, Math.ceil(rows / CHUNKS_OF_FEW_ROWS)));
-  const { chunks, chunksOfFold } = chunksOf(blocks, foldCount, Math.max(1, Math.floor(chunkRows / BLOCK)));
+  const byRow = foldCount > 1 && (options.byRow ?? rows < FEW_ROWS);
+  const blocksOfChunk = Math.max(1, Math.floor(chunkRows / BLOCK));
+  const { chunks, chunksOfFold } = byRow
+    ? chunksOf(
+        blocks.map(() => ({ fold: 0 })),
+        1,
+        blocks.length,
+      )
+    : chunksOf(blocks, foldCount, blocksOfChunk);
   const large = gramUnitsOf(blocks, Math.floor(rows / LARGE_SAMPLE));
   const smallStep = Math.floor(rows / Math.max(SMALL_SAMPLE, SMALL_SAMPLE_PER_COLUMN * columns.length));
   const small = smallStep > 1 ? gramUnitsOf(blocks, smallStep) : [];
@@ -220,7 +233,7 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
     lossVectors: addresses.take(foldCount * 4),
     slopes: addresses.take(linear * stride),
     results: addresses.take(chunks.length * resultBytes),
-    counts: options.counted ? addresses.take(padded * LANES_SINGLE) : 0,
+    counts: options.counted || byRow ? addresses.take(padded * LANES_SINGLE) : 0,
     gramUnits: addresses.take(units.length * 12),
     gramTables: addresses.take(codesOfPacks * 16),
     gramValueTable: addresses.take(internal.length * 4),
@@ -284,7 +297,8 @@ export function layOut(problem: CodedProblem, options: LayoutOptions = {}): Layo
     rowsOfFold: perFold,
     blocks: blocks.length,
     chunks: chunks.length,
-    chunksOfFold,
+    chunksOfFold: byRow ? [] : chunksOfFold,
+    byRow,
     gramUnits: {
       large: { first: 0, units: large },
       small: small.length > 0 ? { first: large.length, units: small } : { first: 0, units: large },

@@ -90,6 +90,19 @@ export class Passes {
     return new Uint8Array(this.layout.machine.buffer, at.counts, blocks * word.BLOCK * LANES_SINGLE);
   }
 
+  /** Sets counts of lanes that leave a fold out each: 0 for its rows, 1 for the others. */
+  leaveOut(folds: readonly number[]): void {
+    const { counts } = this;
+    const { slots, rowsOfFold } = this.layout;
+    const width = Math.ceil(folds.length / 4) * 4;
+    counts.fill(1);
+    folds.forEach((fold, l) => {
+      let start = 0;
+      for (let before = 0; before < fold; before++) start += rowsOfFold[before];
+      for (let s = start; s < start + rowsOfFold[fold]; s++) counts[slots[s] * width + l] = 0;
+    });
+  }
+
   /**
    * One pass: gradient (and in doubles the loss) of every lane at its point; in singles the loss over the fold that a lane leaves out.
    * @param lanes at most 16 in singles, 8 in doubles
@@ -120,7 +133,7 @@ export class Passes {
     for (let l = 0; l < lanes.length; l++) {
       const { point, standardisation, leftOut } = lanes[l];
       f[(at.intercepts >> shift) + l] = point.intercept;
-      if (leftOut >= 0) i32[(at.lossVectors >> 2) + leftOut] = (l / perVector) | 0;
+      if (leftOut >= 0 && !counted) i32[(at.lossVectors >> 2) + leftOut] = (l / perVector) | 0;
       this.contribute(point.t, standardisation.values, l, width, active);
       for (let j = coded; j < columns.length; j++) f[(at.slopes >> shift) + (j - coded) * width + l] = point.t[j];
     }
@@ -137,7 +150,7 @@ export class Passes {
     if (double) layout.machine.kernels.spread64(description);
     else layout.machine.kernels.spread32(description);
     this.crew.run(double ? 'pass64' : 'pass32', description, layout.chunks);
-    this.collect(lanes, width, double);
+    this.collect(lanes, width, double, counted);
   }
 
   /** What the bins of a lane's coded columns add to its linear predictor; packs with a coordinate are marked. */
@@ -155,7 +168,7 @@ export class Passes {
   }
 
   /** Sums chunks in their order and turns sums by bin into gradients; the chunks of a lane's left-out fold are taken out of its sums again. */
-  private collect(lanes: readonly Lane[], width: number, double: boolean): void {
+  private collect(lanes: readonly Lane[], width: number, double: boolean, counted: boolean): void {
     const { layout, f64 } = this;
     const { at, bins, linear, chunks } = layout;
     const size = (bins + linear + 2) * width;
@@ -169,7 +182,7 @@ export class Passes {
     const last = bins + linear + 1;
     lanes.forEach((lane, l) => {
       const { point, standardisation, leftOut } = lane;
-      if (leftOut < 0) {
+      if (leftOut < 0 || counted) {
         this.gradientOf(sums, width, l, null, standardisation, standardisation.totalWeight, this.gradient);
         point.loss = double ? sums[last * width + l] / standardisation.totalWeight : NaN;
       } else {

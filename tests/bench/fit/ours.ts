@@ -1,5 +1,6 @@
 import { optimalityResidual, stratifiedBootstrap, type Fit } from '@tallystone/numeric';
-import { Engine, summariseFolds } from '@tallystone/numeric/engine/engine';
+import { summariseFolds } from "@tallystone/numeric/engine/cross-validation";
+import { Engine } from "@tallystone/numeric/engine/engine";
 import type { Crew } from '@tallystone/numeric/engine/crew';
 import type { CodedProblem } from '@tallystone/numeric/engine/coded-columns';
 import type { BenchCase } from './cases';

@@ -28,7 +28,7 @@ function problem(): CodedProblem {
 /** Everything that passes give, on one kind of kernels. */
 function found(kernels: KernelKind, precision: 'single' | 'double', count: number, counted = false) {
   const of = problem();
-  const layout = layOut(of, { kernels, folds: Uint8Array.from(of.outcome, (_, i) => i % 3), counted: true });
+  const layout = layOut(of, { kernels, folds: Uint8Array.from(of.outcome, (_, i) => i % 3), byRow: false, counted: true });
   const passes = new Passes(layout);
   const standardisation = fullStandardisation(of, layout);
   const random = new Generator(6);
