@@ -23,7 +23,11 @@ export const CharacteristicTreatment = z
   .strictObject({
     column: z.string().min(1),
     treatment: Treatment.default('free'),
-    penaltyMultiplier: z.number().min(0.01, 'At least 0.01; to leave a characteristic unpenalised choose "always kept"').max(100).default(1),
+    penaltyMultiplier: z
+      .number()
+      .min(0.01, 'At least 0.01; to leave a characteristic unpenalised choose "always kept"')
+      .max(100)
+      .default(1),
     /** Only coefficients of at least 0: risk must fall with WOE. */
     signConstraint: z.boolean().default(false),
     reason: Reason.default(''),
@@ -52,7 +56,10 @@ export const DeclinedSettings = z
     uplift: z.number().positive('More than 0').max(20, 'At most 20').default(1.5),
     reason: Reason.default(''),
   })
-  .refine((entry) => entry.method === 'none' || entry.reason.length > 0, { path: ['reason'], message: 'Say why declined applicants are inferred' });
+  .refine((entry) => entry.method === 'none' || entry.reason.length > 0, {
+    path: ['reason'],
+    message: 'Say why declined applicants are inferred',
+  });
 
 /** Accepts only: what a fit does with declined applicants unless it says otherwise. */
 export const noInference: z.output<typeof DeclinedSettings> = { method: 'none', bands: 10, uplift: 1.5, reason: '' };
@@ -86,7 +93,10 @@ export const FitSettings = z.strictObject({
     .default({ count: 10, seed: 1, classing: 'woe' }),
   /** Added to every good and bad count where a bin lacks one of them. */
   woe: z
-    .strictObject({ smoothing: z.number().min(0).max(10).default(0.5), when: z.enum(['zero-cell', 'always', 'never']).default('zero-cell') })
+    .strictObject({
+      smoothing: z.number().min(0).max(10).default(0.5),
+      when: z.enum(['zero-cell', 'always', 'never']).default('zero-cell'),
+    })
     .default({ smoothing: 0.5, when: 'zero-cell' }),
   declined: DeclinedSettings.default(noInference),
   priorCorrection: PriorCorrection.nullable().default(null),
@@ -94,7 +104,10 @@ export const FitSettings = z.strictObject({
     .array(CharacteristicTreatment)
     .max(1000)
     .default([])
-    .refine((entries) => new Set(entries.map((entry) => entry.column)).size === entries.length, 'A characteristic is listed twice'),
+    .refine(
+      (entries) => new Set(entries.map((entry) => entry.column)).size === entries.length,
+      'A characteristic is listed twice',
+    ),
 });
 
 export const NewFit = z.strictObject({ binningId: z.uuid(), settings: FitSettings });
@@ -149,7 +162,9 @@ export const FitSummary = z.object({
   /** Set once the rows of its sample were erased: it is read and no longer gone on with. */
   erased: Erasure.nullable(),
 });
-export const FitList = z.object({ fits: z.array(FitSummary), abilities: z.array(z.enum(fitListAbilities)) }).meta({ id: 'FitList' });
+export const FitList = z
+  .object({ fits: z.array(FitSummary), abilities: z.array(z.enum(fitListAbilities)) })
+  .meta({ id: 'FitList' });
 
 export const Fit = FitSummary.extend({
   settings: FitSettings,
@@ -225,6 +240,8 @@ export const FitPath = z
       minimum: z.int(),
       oneStandardError: z.int(),
       atGridEnd: z.boolean(),
+      /** Places on the path where a fold's fit did not reach its tolerance; absent where all did, and where it was not kept. */
+      notConverged: z.array(z.int()).optional(),
       folds: z.int(),
       classing: FoldClassing,
     }),

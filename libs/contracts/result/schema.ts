@@ -92,6 +92,8 @@ export const resultSchema: z.ZodType<Result, unknown> = z.strictObject({
       minimum: count,
       oneStandardError: count,
       atGridEnd: z.boolean(),
+      /** Places on the path where a fold's fit did not reach its tolerance; absent where all did, and where it was not kept. */
+      notConverged: z.array(count).optional(),
     })
     .nullable(),
   metrics: metricsByPartition,

@@ -68,6 +68,8 @@ export interface ResultCrossValidation {
   minimum: number;
   oneStandardError: number;
   atGridEnd: boolean;
+  /** Places on the path where a fold's fit did not reach its tolerance; absent where all did, and where it was not kept. */
+  notConverged?: number[];
 }
 
 export interface ResultMetrics {

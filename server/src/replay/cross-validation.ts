@@ -8,6 +8,7 @@ import {
   type EngineChoice,
   type Fit,
   type FitProblem,
+  type FoldFailure,
   type FoldResult,
 } from '@tallystone/numeric';
 import type { Specification } from '@tallystone/contracts/specification/types';
@@ -82,6 +83,7 @@ function foldByFold(input: CrossValidationInput, folds: Uint8Array, classed: Fol
   const { spec, coded, fitRows, terms, problem, lambdas, mixing } = input;
   const count = folds.reduce((most, fold) => Math.max(most, fold), 0);
   const results: FoldResult[] = [];
+  const failures: FoldFailure[] = [];
   for (let fold = 1; fold <= count; fold++) {
     const training = folds.map((other) => (other === fold ? 0 : 1));
     const bins = classed?.classed(fold, training) ?? null;
@@ -101,6 +103,9 @@ function foldByFold(input: CrossValidationInput, folds: Uint8Array, classed: Fol
     const heldWeights = fitRows.weights === null ? undefined : gatherNumbers(fitRows.weights, outside);
     const weight = heldWeights === undefined ? outside.length : heldWeights.reduce((sum, value) => sum + value, 0);
     const { fits } = fastPath(part, { lambdas }, { tolerance: FOLD_TOLERANCE, crewFor: input.crewFor });
+    fits.forEach(({ status }, index) => {
+      if (status !== 'converged') failures.push({ fold, index, status });
+    });
     results.push({
       fold,
       weight,
@@ -114,8 +119,13 @@ function foldByFold(input: CrossValidationInput, folds: Uint8Array, classed: Fol
     });
     input.onFold?.(fold, count);
   }
-  return summarise(lambdas, results);
+  const summary = summarise(lambdas, results);
+  return failures.length > 0 ? { ...summary, failures } : summary;
 }
+
+/** Places on the path where a fold's fit did not reach its tolerance, in their order. */
+export const notConverged = ({ failures = [] }: CrossValidated): number[] =>
+  [...new Set(failures.map(({ index }) => index))].sort((a, b) => a - b);
 
 /** Indicators of the fold's own bins; where the full design left out a reference bin, so does the fold. */
 function foldTermsOf(terms: readonly Term[], bins: readonly FoldBins[], coded: CodeMatrix): Term[] {

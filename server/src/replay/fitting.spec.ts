@@ -252,6 +252,21 @@ describe('choosing the penalty', () => {
     expect(listed.crossValidation).toEqual(best.crossValidation);
   });
 
+  it('says at which penalties a fold did not converge', () => {
+    // Of owners only rows of fold 1 are bad: without it the unpenalised indicator has no finite coefficient.
+    const owners = sample['home'].map((home, row) => home === 'owner' && sample['bad'][row] !== 'i');
+    const bad = sample['bad'].map((value, row) => (owners[row] ? (sample['fold'][row] === '1' ? '1' : '0') : value));
+    const characteristics = [
+      { ...HOME, groups: [['rent'], ['owner'], ['parents', 'other']], coding: 'indicator', penaltyMultiplier: 0 },
+      AGE,
+    ];
+    const fit = { mixing: 1, lambda: { grid: [0.01, 0.002] }, choose: 'minimum', folds: { column: 'fold' } };
+    const separated = result({ characteristics, fit }, { ...sample, bad });
+    expect(separated.crossValidation?.notConverged).toEqual([0, 1]);
+    expect(separated.converged).toBe(true);
+    expect(result({ characteristics, fit }).crossValidation).not.toHaveProperty('notConverged');
+  });
+
   it('classing in folds: "cuts" with bins made by hand equals "woe"; automatic bins are cut anew', () => {
     const automatic = {
       made: 'automatic',

@@ -2,6 +2,7 @@ import type { Fit } from '@tallystone/numeric';
 import type { Result, ResultBin, ResultCharacteristic, ResultPathPoint } from '@tallystone/contracts/result/types';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import { bandEdges, bandsOf, characteristicStability, scoreStability } from './bands';
+import { notConverged } from './cross-validation';
 import { evaluateFit, evaluatorOf, type Evaluation, type Evaluator } from './evaluate';
 import type { FittedModel, Method } from './fit';
 import type { CodeMatrix, Prepared, Term } from './types';
@@ -66,6 +67,7 @@ export function buildResult(input: ResultInput): Result {
             minimum: validated.minimum,
             oneStandardError: validated.oneStandardError,
             atGridEnd: validated.atGridEnd,
+            ...(validated.failures ? { notConverged: notConverged(validated) } : {}),
           },
     metrics: evaluation.metrics,
     weightedMetrics: evaluation.weightedMetrics,

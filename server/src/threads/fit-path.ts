@@ -3,6 +3,7 @@ import type { FitPath, PenaltyMetrics, Treatment } from '@tallystone/contracts/f
 import type { PartitionName } from '@tallystone/contracts/result/types';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import { codeCharacteristics } from '../replay/coding';
+import { notConverged } from '../replay/cross-validation';
 import { type Evaluator, PARTITION_NAMES, evaluateFit, evaluatorOf } from '../replay/evaluate';
 import { type TrainedPath, keptOf, trainPaths } from '../replay/fit';
 import { badRate } from '../replay/fit-rows';
@@ -39,7 +40,10 @@ class NotWanted extends Error {}
  * Fits a penalty path with cross-validation from a sample's columns and evaluates every penalty on every partition: the whole of what a
  * person moves along afterwards without asking again.
  */
-export const fitPenaltyPath: Task<FitPathPayload, FitPathAnswer> = ({ specification, rows, columns, treatments }, { cancelled, progress }) => {
+export const fitPenaltyPath: Task<FitPathPayload, FitPathAnswer> = (
+  { specification, rows, columns, treatments },
+  { cancelled, progress },
+) => {
   const goOn = (): void => {
     if (cancelled()) throw new NotWanted('The fit was cancelled');
   };
@@ -68,11 +72,21 @@ export const fitPenaltyPath: Task<FitPathPayload, FitPathAnswer> = ({ specificat
     const metrics: Record<PartitionName, Metrics> = { development: [], holdOut: [], outOfTime: [] };
     trained.fits.forEach((fit, index) => {
       goOn();
-      progress('Evaluating every penalty', shareOf.path + shareOf.folds + ((1 - shareOf.path - shareOf.folds) * index) / trained.fits.length);
-      const evaluation = evaluateFit(evaluator, trained.terms, { ...fit, intercept: fit.intercept + (correction?.shift ?? 0) }, { figures: 'path' });
+      progress(
+        'Evaluating every penalty',
+        shareOf.path + shareOf.folds + ((1 - shareOf.path - shareOf.folds) * index) / trained.fits.length,
+      );
+      const evaluation = evaluateFit(
+        evaluator,
+        trained.terms,
+        { ...fit, intercept: fit.intercept + (correction?.shift ?? 0) },
+        { figures: 'path' },
+      );
       for (const name of PARTITION_NAMES) {
         const measured = evaluation.metrics[name];
-        metrics[name].push(measured && penaltyMetrics(measured, evaluation.scores[name].scores, evaluator.partitions[name].outcome));
+        metrics[name].push(
+          measured && penaltyMetrics(measured, evaluation.scores[name].scores, evaluator.partitions[name].outcome),
+        );
       }
     });
     const kept = trained.fits.map((fit) => keptOf(fit, trained.terms, coded).filter(Boolean).length);
@@ -124,7 +138,9 @@ function pathOf(
   const { folds } = specification.fit;
   if (validated === null || folds === null) throw new Error('A fit of the product is always cross-validated');
   // One coefficient for each characteristic: the product fits WOE, in the specification's order.
-  const places = specification.characteristics.map((_, index) => trained.terms.findIndex((term) => term.characteristic === index));
+  const places = specification.characteristics.map((_, index) =>
+    trained.terms.findIndex((term) => term.characteristic === index),
+  );
   return {
     lambdas: trained.fits.map((fit) => fit.lambda),
     intercepts: trained.fits.map((fit) => fit.intercept + (correction?.shift ?? 0)),
@@ -162,6 +178,7 @@ function pathOf(
       minimum: validated.minimum,
       oneStandardError: validated.oneStandardError,
       atGridEnd: validated.atGridEnd,
+      ...(validated.failures ? { notConverged: notConverged(validated) } : {}),
       folds: validated.folds.length,
       classing: folds.classing,
     },

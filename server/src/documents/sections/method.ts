@@ -140,6 +140,11 @@ function writeCrossValidation(writer: Writer): void {
   });
   if (crossValidation.atGridEnd)
     writer.caution('The smallest deviance lies at the end of the penalties that were tried: a weaker penalty might do better.');
+  const unproven = crossValidation.notConverged ?? [];
+  if (unproven.length > 0)
+    writer.caution(
+      `At ${plural(unproven.length, 'penalty', 'penalties')} the fit of a fold did not reach its tolerance: the mean deviance there is not proven, and the rules may have chosen by it.`,
+    );
   const folds = input.specification.fit.folds;
   if (folds !== null && folds.classing === 'once') {
     writer.caution(

@@ -1,5 +1,17 @@
 import { smallPath } from '../testing/path';
-import { correctionWords, decisionAt, entryOrder, inferenceWords, nearestIndex, notchLabel, pathFinding, placeBeside, pathTitle, ruleAt, scorecardAt } from './path-view';
+import {
+  correctionWords,
+  decisionAt,
+  entryOrder,
+  inferenceWords,
+  nearestIndex,
+  notchLabel,
+  pathFinding,
+  placeBeside,
+  pathTitle,
+  ruleAt,
+  scorecardAt,
+} from './path-view';
 
 describe('what a path shows', () => {
   it('lists characteristics in the order they enter', () => {
@@ -32,12 +44,23 @@ describe('what a path shows', () => {
     expect(decisionAt(both, 2)).toMatch(/^income, phone would enter at penalty 0\.010\. Take them or leave them/);
   });
 
+  it('says before all else what did not converge, and where', () => {
+    const status = smallPath().status.map((one, index) => (index === 5 ? 'separation' : index === 4 ? 'iteration-limit' : one));
+    expect(decisionAt(smallPath({ status }), 5)).toContain('no finite optimum');
+    expect(decisionAt(smallPath({ status }), 4)).toContain('did not reach its tolerance');
+    const folds = smallPath({ crossValidation: { ...smallPath().crossValidation, notConverged: [2] } });
+    expect(decisionAt(folds, 2)).toMatch(/^The fit of a fold at this penalty did not reach its tolerance/);
+    expect(decisionAt(folds, 4)).toBeNull();
+  });
+
   it('says when a penalty is above the one-standard-error rule', () => {
     expect(decisionAt(smallPath(), 0)).toContain('above the one-standard-error rule');
   });
 
   it('finds what the rules differ by', () => {
-    expect(pathFinding(smallPath())).toBe('One characteristic carries the model; the one that follows adds 0.0025 of deviance, inside one standard error.');
+    expect(pathFinding(smallPath())).toBe(
+      'One characteristic carries the model; the one that follows adds 0.0025 of deviance, inside one standard error.',
+    );
   });
 
   it('says first when the minimum is at the end of the path', () => {
@@ -61,12 +84,19 @@ describe('what a path shows', () => {
 
   it('say what a prior correction did, and what inference means', () => {
     expect(correctionWords(smallPath(), 2)).toBeNull();
-    const path = smallPath({ priorCorrection: { sampleBadRate: 0.3, populationBadRate: 0.05, shift: 2.0971 }, intercepts: smallPath().intercepts.map(() => 2.9471) });
+    const path = smallPath({
+      priorCorrection: { sampleBadRate: 0.3, populationBadRate: 0.05, shift: 2.0971 },
+      intercepts: smallPath().intercepts.map(() => 2.9471),
+    });
     // 0.85 + ln(19 x 3/7) = 2.947, as King and Zeng's formula gives in the library's docstring.
-    expect(correctionWords(path, 2)).toContain('from 0.850 to 2.947, from the bad rate of the fitted rows, 30.0\u202f%, to that of the population, 5.0\u202f%');
+    expect(correctionWords(path, 2)).toContain(
+      'from 0.850 to 2.947, from the bad rate of the fitted rows, 30.0\u202f%, to that of the population, 5.0\u202f%',
+    );
     expect(correctionWords(path, 2)).toContain('reads off by about 2.10');
     expect(inferenceWords('none')).toBeNull();
-    expect(inferenceWords('parcelling')).toMatch(/^Declined applicants enter WOE and fit by parcelling\. .*cannot be tested on accepted applicants/);
+    expect(inferenceWords('parcelling')).toMatch(
+      /^Declined applicants enter WOE and fit by parcelling\. .*cannot be tested on accepted applicants/,
+    );
   });
 
   it('places a label where the notch does not run through it', () => {

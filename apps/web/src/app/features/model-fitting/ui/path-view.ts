@@ -31,7 +31,9 @@ export function entries(path: Pick<FitPath, 'coefficients' | 'characteristics'>)
 export function entryOrder(path: Pick<FitPath, 'coefficients' | 'characteristics'>): number[] {
   const at = entries(path);
   const last = path.coefficients[path.coefficients.length - 1] ?? [];
-  return path.characteristics.map((_, j) => j).sort((a, b) => at[a] - at[b] || Math.abs(last[b] ?? 0) - Math.abs(last[a] ?? 0) || a - b);
+  return path.characteristics
+    .map((_, j) => j)
+    .sort((a, b) => at[a] - at[b] || Math.abs(last[b] ?? 0) - Math.abs(last[a] ?? 0) || a - b);
 }
 
 /**
@@ -131,11 +133,25 @@ export function nearestIndex(lambdas: readonly number[], lambda: number): number
   return best;
 }
 
+/** What did not converge at this penalty, and what to do; null where all did. */
+function unprovenAt({ status, crossValidation }: FitPath, index: number): string | null {
+  const way =
+    'Join bins that hold few goods or bads, leave out a characteristic that separates them, or keep to a larger penalty.';
+  if (status[index] === 'separation')
+    return `The fit at this penalty has no finite optimum: characteristics separate goods from bads. ${way}`;
+  if (status[index] !== 'converged') return `The fit at this penalty did not reach its tolerance. ${way}`;
+  if ((crossValidation.notConverged ?? []).includes(index))
+    return `The fit of a fold at this penalty did not reach its tolerance: its cross-validated deviance is not proven. ${way}`;
+  return null;
+}
+
 /**
- * What at this penalty wants a decision, the weightiest first; null where nothing does.
- * Signs against WOE go before an uncertain next characteristic, because they block a submission until justified.
+ * What at this penalty wants a decision, the weightiest first; null where nothing does. A fit that did not converge goes before all: nothing shown of it is
+ * proven. Signs against WOE go before an uncertain next characteristic, because they block a submission until justified.
  */
 export function decisionAt(path: FitPath, index: number): string | null {
+  const unproven = unprovenAt(path, index);
+  if (unproven) return unproven;
   const against = scorecardAt(path, index).filter((entry) => entry.againstWoe);
   if (against.length > 0) {
     const names = against.slice(0, 3).map((entry) => entry.label);
@@ -146,7 +162,8 @@ export function decisionAt(path: FitPath, index: number): string | null {
   }
   const next = path.kept.findIndex((kept, i) => i > index && kept > path.kept[index]);
   const { oneStandardError, minimum } = path.crossValidation;
-  if (index < oneStandardError) return 'This penalty is above the one-standard-error rule: cross-validated deviance is worse than chance would explain.';
+  if (index < oneStandardError)
+    return 'This penalty is above the one-standard-error rule: cross-validated deviance is worse than chance would explain.';
   if (next > 0 && next <= minimum) {
     const entering = path.characteristics.filter((_, j) => path.coefficients[index][j] === 0 && path.coefficients[next][j] !== 0);
     if (entering.length > 0) {
@@ -173,6 +190,8 @@ export function placeBeside(
     { x: right, anchor: 'end', from: right - width },
     { x: left, anchor: 'start', from: left },
   ] as const;
-  const place = places.find(({ from }) => from >= left && from + width <= right && (other < from - 4 || other > from + width + 4));
+  const place = places.find(
+    ({ from }) => from >= left && from + width <= right && (other < from - 4 || other > from + width + 4),
+  );
   return place ? { x: place.x, anchor: place.anchor } : null;
 }
