@@ -38,7 +38,7 @@ module.exports = {
       comment: 'Numbers stay pure: nothing of the project, no Node.js, of packages the numerical ones alone.',
       severity: 'error',
       from: { path: '^libs/numeric/', pathNot: spec },
-      to: { pathNot: '^libs/numeric/|node_modules/(ml-matrix|ml-logistic-regression|pure-rand|@stdlib)/' },
+      to: { pathNot: '^libs/numeric/|node_modules/(ml-matrix|ml-logistic-regression|@stdlib)/' },
     },
     {
       name: 'contracts-import-types-of-numeric-alone',

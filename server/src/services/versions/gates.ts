@@ -7,6 +7,7 @@ import { rows } from '../../database/sql';
 import { editsWithoutReason } from '../binnings/characteristics-of';
 import { findDefinition } from '../samples/definitions';
 import type { FoundVersion } from './find-version';
+import { specialsMapped } from './special-codes';
 
 /** Author's texts that the printed sections need, with the words a gate names them by. */
 const authorsTexts: readonly (readonly [VersionTextKey, string])[] = [
@@ -89,8 +90,7 @@ async function submitItems(sequelize: Sequelize, { version, specification, resul
     {
       code: 'special-codes-mapped',
       label: 'Special codes are mapped',
-      holds: true,
-      detail: specialsDetail(specification),
+      ...specialsMapped(specification, definition?.content.columns ?? []),
       path: `${model}/binning/${version.binningId}`,
     },
     {
@@ -134,11 +134,6 @@ export function reconciled({ counts }: Pick<Result, 'counts'>, fileRows: number)
   const sum = excluded + counts.declined + parts;
   const words = `${excluded} excluded + ${counts.declined} declined + ${parts} in the partitions = ${sum} of ${fileRows} rows`;
   return sum === fileRows ? { holds: true, detail: `${words}.` } : { holds: false, detail: `${words}: ${Math.abs(fileRows - sum)} rows are not accounted for.` };
-}
-
-function specialsDetail({ characteristics }: Specification): string {
-  const own = characteristics.flatMap((entry) => (entry.coding === 'linear' ? [] : entry.special.map(({ label }) => `${entry.column}: ${label}`)));
-  return own.length === 0 ? 'The sample states no special codes.' : `Each has a bin: ${own.slice(0, 6).join('; ')}${own.length > 6 ? ` and ${own.length - 6} more` : ''}.`;
 }
 
 function concludeItems({ version, replications, matchingReplications }: Looked): GateItem[] {
