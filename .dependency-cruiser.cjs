@@ -41,6 +41,13 @@ module.exports = {
       to: { pathNot: '^libs/numeric/|node_modules/(ml-matrix|ml-logistic-regression|@stdlib)/' },
     },
     {
+      name: 'independent-shares-no-solver',
+      comment: 'The second solver proves the first only while they share nothing but types and the check of what they are given.',
+      severity: 'error',
+      from: { path: '^libs/numeric/independent/', pathNot: spec },
+      to: { path: '^libs/numeric/', pathNot: '^libs/numeric/(independent/|errors|penalised/(problem|validation)\\.ts)' },
+    },
+    {
       name: 'contracts-import-types-of-numeric-alone',
       severity: 'error',
       from: { path: '^libs/contracts/', pathNot: spec },

@@ -12,6 +12,8 @@ const imports: readonly (readonly [file: string, imported: string, rule?: string
   ['libs/numeric/reads-files.ts', 'node:fs', 'numeric-imports-nothing'],
   ['libs/numeric/knows-contracts.ts', '@tallystone/contracts/fits/schema', 'numeric-imports-nothing'],
   ['libs/numeric/matrix.ts', 'ml-matrix'],
+  ['libs/numeric/independent/borrows.ts', '../penalised/solver', 'independent-shares-no-solver'],
+  ['libs/numeric/independent/checks.ts', '../penalised/validation'],
   ['libs/contracts/fits/runs-numbers.ts', '@tallystone/numeric', 'contracts-import-types-of-numeric-alone'],
   ['server/src/services/fits/knows-web.ts', '../../../../apps/web/src/app/core/session', 'server-never-web'],
   ['server/src/services/fits/knows-routes.ts', '../../routes/fits', 'services-reach-down'],
@@ -32,6 +34,8 @@ const imports: readonly (readonly [file: string, imported: string, rule?: string
 
 const targets = [
   'libs/numeric/index.ts',
+  'libs/numeric/penalised/solver.ts',
+  'libs/numeric/penalised/validation.ts',
   'libs/contracts/fits/schema.ts',
   'server/src/routes/fits/index.ts',
   'server/src/models/fit.ts',
