@@ -13,8 +13,8 @@ export interface VersionStanding extends RestsOnRows {
   /** Everyone who defined the sample, classed, fitted, chose the penalty, scaled, wrote texts, froze or submitted. */
   readonly developedBy: ReadonlySet<string>;
   readonly submittedBy: string | null;
-  /** The validator who took it on; null before. */
-  readonly validatedBy: string | null;
+  /** Whoever took it on or concluded since it was last submitted. */
+  readonly validators: ReadonlySet<string>;
   readonly concluded: boolean;
 }
 
@@ -70,7 +70,7 @@ function canSign(person: Actor, version: VersionStanding): Decision {
   if (!person.roles.includes('compliance')) return forbidden('Compliance does this.');
   const apart = separate(person, version, 'sign');
   if (!apart.allowed) return apart;
-  if (version.validatedBy === person.id) return forbidden('You validated this version: someone else has to sign it for compliance.');
+  if (version.validators.has(person.id)) return forbidden('You validated this version: someone else has to sign it for compliance.');
   if (!stands(version, 'In validation')) return wrongState(version, 'signed');
   return version.concluded ? allowed : forbidden('The validator has not concluded yet.');
 }

@@ -48,7 +48,7 @@ export interface FoundVersion extends VersionStanding {
   readonly returned: boolean;
 }
 
-type Row = Omit<FoundVersion, 'model' | 'state' | 'developedBy' | 'submittedBy' | 'validatedBy' | 'concluded' | 'returned'> & {
+type Row = Omit<FoundVersion, 'model' | 'state' | 'developedBy' | 'submittedBy' | 'validators' | 'concluded' | 'returned'> & {
   readonly memberIds: readonly string[];
   readonly developers: readonly string[];
 };
@@ -123,7 +123,7 @@ function found({ memberIds, developers, ...row }: Row): FoundVersion {
     state,
     developedBy: new Set(developers),
     submittedBy: latest('submit')?.byId ?? null,
-    validatedBy: concluding?.byId ?? latest('start')?.byId ?? null,
+    validators: new Set(since.filter(({ act }) => act === 'start' || act === 'conclude').map(({ byId }) => byId)),
     concluded: concluding !== undefined,
     returned: last?.act === 'return',
   };
