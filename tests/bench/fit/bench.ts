@@ -9,7 +9,7 @@
 import { parseArgs } from 'node:util';
 import { CASES, type BenchCase } from './cases';
 import { hasGlmnet, timeGlmnet, type GlmnetTimes } from './glmnet';
-import { timeBootstrap, timeOurs, timeRefit, type OurTimes, type Timed } from './ours';
+import { PROOFS, timeBootstrap, timeOurs, timeRefit, type OurTimes, type Timed } from './ours';
 import { benchSample, type BenchSample } from './sample';
 import { Alone } from '@tallystone/numeric/engine/crew';
 import { crewFor, warmCrew } from '../../../server/src/threads/crew';
@@ -39,6 +39,8 @@ if (!withGlmnet && !alone) console.error('R with glmnet is not installed (Debian
 const seconds = (value: number): string => (value < 1 ? `${(1000 * value).toFixed(0)} ms` : `${value.toFixed(2)} s`);
 const figure = (value: number): string => value.toExponential(1);
 let memory = 0;
+/** What path points and folds are asked for, with room for the rounding of the proof. */
+const LARGEST_RESIDUAL = 1.01e-6;
 /** Long enough for the compiler to have seen the code of small cases. */
 const WARM_MS = 4000;
 const median = (values: readonly number[]): number => [...values].sort((a, b) => a - b)[Math.floor((values.length - 1) / 2)];
@@ -113,24 +115,62 @@ function measurePath(of: BenchCase, sample: BenchSample): BenchResult {
     ? { path: median(theirs.map(({ path }) => path.cpu)) / median(ours.map(({ path }) => path.cpu)), cv: cpuRatio(ours, theirs) }
     : null;
   const difference = differenceOf(ours[0], theirs[0]);
-  const marked = of.extrapolateFrom ? ` (extrapolated from the path by the ratio of ${of.extrapolateFrom})` : '';
-  const row = (name: string, path: Timed, cv: Timed | null, peak: number): string =>
-    `  ${name.padEnd(8)} path ${seconds(path.seconds)}, residual ${figure(path.residual)}; cross-validation ${cv ? `${seconds(cv.seconds)}, residual ${figure(cv.residual)}` : 'not measured'}; ${peak.toFixed(0)} MB`;
+  const table = [
+    ['', 'path', 'residual', 'cross-validation', 'residual', 'peak memory', 'processor time'],
+    rowOf('ours', own.path, own.cv, own.peakMemoryMB, [
+      median(ours.map(({ path }) => path.cpu)),
+      median(ours.map(({ cv }) => cv.cpu)),
+    ]),
+    ...(glmnet && ratio && cpu
+      ? [
+          rowOf('glmnet', glmnet.path, glmnet.cv, glmnet.peakMemoryMB, [
+            median(theirs.map(({ path }) => path.cpu)),
+            glmnet.cvExtrapolated ? null : median(theirs.flatMap(({ cv }) => (cv ? [cv.cpu] : []))),
+          ]),
+          ['ratio', times(ratio.path), '', times(ratio.cv), '', '', `${times(cpu.path)}, ${times(cpu.cv)}`],
+        ]
+      : []),
+  ];
+  if (Math.max(own.path.residual, own.cv.residual) > LARGEST_RESIDUAL) {
+    process.exitCode = 1;
+    console.error(`${of.name}: a residual is above ${figure(LARGEST_RESIDUAL)}, so the times are those of another task.`);
+  }
   return {
     json: { case: of.name, rows: of.rows, columns: of.columns, ours: own, glmnet, ratio },
     lines: [
-      `${of.name}: ${of.rows} x ${of.columns}, mixing ${of.mixing}, ${ours[0].fits.length} penalties, ${threads} threads; medians of ${of.rounds}`,
-      row('ours', own.path, own.cv, own.peakMemoryMB) +
-        `; passes ${ours[0].passes.path} and ${ours[0].passes.cv}; processor time ${seconds(median(ours.map(({ path }) => path.cpu)))} and ${seconds(median(ours.map(({ cv }) => cv.cpu)))}`,
-      ...(glmnet && ratio && cpu
-        ? [
-            row('glmnet', glmnet.path, glmnet.cv, glmnet.peakMemoryMB) + marked,
-            `  ratio    path ${ratio.path.toFixed(2)}, cross-validation ${ratio.cv?.toFixed(2) ?? '-'}; by processor time ${cpu.path.toFixed(2)} and ${cpu.cv?.toFixed(2) ?? '-'}`,
-            `  largest relative difference in deviance ${difference === null ? '-' : figure(difference)}`,
-          ]
+      `${of.name}: ${of.rows} x ${of.columns}, mixing ${of.mixing}, ${ours[0].fits.length} penalties, ${threads} threads, ${of.rounds === 1 ? 'one run' : `medians of ${of.rounds}`}; passes ${ours[0].passes.path} and ${ours[0].passes.cv}`,
+      ...aligned(table),
+      `  Residuals: ours of every point of the path and of ${PROOFS} fits of folds, glmnet's of twelve points and of the first fold.`,
+      ...(of.extrapolateFrom
+        ? [`  glmnet's cross-validation is extrapolated from its path by the ratio of case ${of.extrapolateFrom}.`]
         : []),
+      ...(glmnet ? [`  Largest relative difference in deviance ${difference === null ? '-' : figure(difference)}.`] : []),
     ],
   };
+}
+
+function times(value: number | null | undefined): string {
+  return value === null || value === undefined ? '-' : `${value.toFixed(2)} x`;
+}
+
+function rowOf(name: string, path: Timed, cv: Timed | null, peak: number, cpus: readonly (number | null)[]): string[] {
+  return [
+    name,
+    seconds(path.seconds),
+    figure(path.residual),
+    cv ? seconds(cv.seconds) : 'not measured',
+    cv ? figure(cv.residual) : '',
+    `${peak.toFixed(0)} MB`,
+    cpus.map((value) => (value === null ? '-' : seconds(value))).join(', '),
+  ];
+}
+
+/** Columns under each other, the first to the left. */
+function aligned(table: readonly (readonly string[])[]): string[] {
+  const widths = table[0].map((_, column) => Math.max(...table.map((row) => row[column].length)));
+  return table.map(
+    (row) => `  ${row.map((cell, column) => (column === 0 ? cell.padEnd(widths[0]) : cell.padStart(widths[column]))).join('  ')}`,
+  );
 }
 
 function cpuRatio(ours: readonly OurTimes[], theirs: readonly GlmnetTimes[]): number | null {

@@ -1,6 +1,6 @@
 import { optimalityResidual, stratifiedBootstrap, type Fit } from '@tallystone/numeric';
-import { summariseFolds } from "@tallystone/numeric/engine/cross-validation";
-import { Engine } from "@tallystone/numeric/engine/engine";
+import { summariseFolds } from '@tallystone/numeric/engine/cross-validation';
+import { Engine } from '@tallystone/numeric/engine/engine';
 import type { Crew } from '@tallystone/numeric/engine/crew';
 import type { CodedProblem } from '@tallystone/numeric/engine/coded-columns';
 import type { BenchCase } from './cases';
@@ -22,7 +22,7 @@ export interface OurTimes {
 
 const GRID = { count: 100, smallestRatio: 1e-4, earlyStop: true };
 /** Folds' fits whose residual is proved in double precision after the clock has stopped. */
-const PROOFS = 40;
+export const PROOFS = 40;
 const RESAMPLES = 200;
 
 const problemOf = (of: BenchCase, sample: BenchSample): CodedProblem => ({
