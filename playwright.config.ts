@@ -12,7 +12,7 @@ export default defineConfig({
   globalSetup: './tests/support/browser-set-up.ts',
   outputDir: 'test-results',
   fullyParallel: false,
-  workers: 3,
+  workers: 2,
   retries: 0,
   forbidOnly: true,
   timeout: 90_000,

@@ -147,7 +147,7 @@ export function steps({ work, long, filter }) {
         ...bin('vitest/vitest.mjs'),
         'run',
         ...filter,
-        '--maxWorkers=3',
+        '--maxWorkers=2',
         '--reporter=default',
         '--reporter=json',
         `--outputFile.json=${report('unit')}`,
