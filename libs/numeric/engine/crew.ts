@@ -148,7 +148,11 @@ export class Team implements Crew {
   }
 }
 
-/** The work of a helping thread: pieces of round after round, until its crew leaves. */
+/**
+ * The work of a helping thread: pieces of round after round, until its crew leaves. It returns only then.
+ * @throws where WebAssembly may not run, which its crew would not have asked of it
+ * @example parentPort.on('message', (order) => help(order))
+ */
 export function help(order: HelpOrder): void {
   const machine = joinMachine(order.shared);
   const words = new Int32Array(machine.buffer);

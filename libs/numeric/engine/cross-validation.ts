@@ -222,7 +222,12 @@ export class FoldsAlong {
   }
 }
 
-/** The folds' summary, as `crossValidate` gives it. @throws never; `null` while a fold is missing */
+/**
+ * The folds' summary, as `crossValidate` gives it.
+ * @param lambdas those that the folds were followed along
+ * @returns null while a fold is missing, because the engine gave it up
+ * @example summariseFolds([0.1, 0.05], { folds: [1, 2].map((fold) => ({ fold, weight: 1, deviance: [1.2, 1.1] })), optimalityResidual: 1e-7 }).minimum // 1
+ */
 export function summariseFolds(lambdas: readonly number[], result: EngineCrossValidation): CrossValidation | null {
   const folds = result.folds.flatMap((fold) => (fold ? [fold] : []));
   if (folds.length < result.folds.length) return null;

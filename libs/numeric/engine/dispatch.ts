@@ -87,8 +87,15 @@ function using<Value>(engine: Engine, work: (engine: Engine) => Value): Value {
 }
 
 /**
- * As `fitPath`, by the engine where that is faster. Fits that the engine cannot finish, and those without a penalty, are the oracle's.
- * @example fastPath(problem, { count: 100, smallestRatio: 1e-4, earlyStop: true }, { tolerance: 1e-9 }).solver // 'engine'
+ * As `fitPath`, by the engine where that is faster: a path of penalised fits, from the largest lambda down. Fits that the engine cannot finish, and those
+ * without a penalty, are the oracle's. Source of objective, grid and early stop: Friedman, Hastie and Tibshirani, Journal of Statistical Software 33 (2010).
+ * @param stated p columns of n finite values, n outcomes (1 good, 0 bad), the penalty
+ * @param grid a number of lambdas with their smallest ratio, or the lambdas themselves, decreasing
+ * @param options.tolerance largest optimality residual, on the standardised scale; default 1e-9
+ * @param options.crewFor who works on it; the numbers do not depend on that
+ * @returns fits by lambda with residual and status, why the path ended early, and which solver found them
+ * @throws NumericError for bad arguments, with the place; what data do to a fit (separation, an iteration limit) is its status
+ * @example fastPath(problem, { count: 10, smallestRatio: 1e-2, earlyStop: true }, { tolerance: 1e-9 }).fits.length // 10
  */
 export function fastPath(
   stated: FitProblem,
@@ -112,7 +119,15 @@ export function fastPath(
   return { ...path, ...ENGINE };
 }
 
-/** As `fitAt`, by the engine where that is faster. */
+/**
+ * As `fitAt`, by the engine where that is faster: the fit at one lambda.
+ * @param stated p columns of n finite values, n outcomes (1 good, 0 bad), the penalty
+ * @param lambda at least 0; without a penalty the oracle fits
+ * @param options.start a fit to begin at, for instance that from before a bin was changed
+ * @returns intercept and p coefficients on the scale of x, residual, status, and which solver found them
+ * @throws NumericError for bad arguments, with the place
+ * @example fastFit(problem, 0.02).coefficients.length // 3
+ */
 export function fastFit(
   stated: FitProblem,
   lambda: number,
@@ -137,8 +152,14 @@ export function fastFit(
 /**
  * As `crossValidate`, by the engine where that is faster. The engine's folds reach a residual of 1e-6, and their deviances are taken on from there to the
  * optimum; `tolerance` is what the oracle is asked for. A fold that the engine gives up is fitted by the oracle.
+ * Source: Stone, Journal of the Royal Statistical Society B 36 (1974); the one-standard-error rule: Breiman et al., Classification and Regression Trees (1984).
+ * @param folds fold of each of the n rows, from 1 without gaps
+ * @param lambdas decreasing
  * @param options.path fits of all rows at the lambdas, found before, spare finding them again
  * @param options.onProgress share of the work done, now and then; it may throw to stop
+ * @returns mean deviance and its standard error by lambda, both rules' places, folds, and every fit that did not converge (`failures`)
+ * @throws NumericError for bad arguments, with the place
+ * @example fastCrossValidation(problem, folds, [0.05, 0.02]).folds.length // 4
  */
 export function fastCrossValidation(
   stated: FitProblem,
@@ -185,7 +206,14 @@ export function fastCrossValidation(
   });
 }
 
-/** As `resampleFits`, by the engine where that is faster and a residual of 1e-6 is enough. A resample that the engine gives up is fitted by the oracle. */
+/**
+ * As `resampleFits`, by the engine where that is faster and a residual of 1e-6 is enough: fits of stratified bootstrap resamples at one lambda. A resample that
+ * the engine gives up is fitted by the oracle. Source: Efron and Tibshirani, An Introduction to the Bootstrap (1993), chapter 6.
+ * @param options.seed and the number of a resample decide its draw, so that resamples can be shared out in any way (`first`, `count`)
+ * @returns intercept and coefficients of each resample, and whether it converged
+ * @throws NumericError for bad arguments, with the place
+ * @example fastResamples(problem, 0.02, { seed: 1, count: 3 }).draws.length // 3
+ */
 export function fastResamples(
   stated: FitProblem,
   lambda: number,

@@ -1,7 +1,11 @@
 import { Engine } from './engine';
 import { FoldSheet, type FoldBatch } from './fold-batch';
 
-/** The work of a helping thread on folds that it was sent: the same numbers as in the owner's thread. */
+/**
+ * The work of a helping thread on folds that it was sent: the same numbers as in the owner's thread. What goes wrong is told by the sheet, and the owner does
+ * the folds itself.
+ * @example parentPort.on('message', (batch) => helpFolds(batch))
+ */
 export function helpFolds(batch: FoldBatch): void {
   const { problem, folds, lambdas, guide, first, end, tolerance, values, withFits } = batch;
   const sheet = new FoldSheet(batch.sheet, lambdas.length, withFits ? problem.columns.length : 0);
