@@ -1,7 +1,7 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { optimalityResidual } from '../penalised/optimality';
-import { fitAt, fitPath } from '../penalised/path';
+import { fitPath } from '../penalised/path';
 import type { FitProblem } from '../penalised/problem';
 import { Generator } from '../random/generator';
 import { problems, randomProblem, seeds } from '../testing/problems';
@@ -102,15 +102,5 @@ describe('what the engine gives up is the oracle’s, and said', () => {
   it('a residual that singles cannot prove, of resamples', () => {
     const found = fastResamples(problem, 0.02, { seed: 1, count: 2, tolerance: 1e-8 });
     expect([found.solver, found.reason]).toEqual(['oracle', 'a residual of 1e-8 is asked of resamples']);
-  });
-
-  it('more than 2,000 columns', () => {
-    const random = new Generator(4);
-    const few = randomProblem(9, 60, 1, lasso);
-    const columns = Array.from({ length: 2001 }, () => Float64Array.from(few.outcome, () => random.normal()));
-    const wide: FitProblem = { ...few, columns };
-    const fit = fastFit(wide, 0.4, { engineFrom: 0 });
-    expect([fit.solver, fit.reason]).toEqual(['oracle', 'more than 2,000 columns']);
-    expect(fit.objective).toBe(fitAt(wide, 0.4).objective);
   });
 });
