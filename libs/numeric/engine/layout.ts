@@ -113,6 +113,13 @@ export interface Layout {
   readonly linearMoments: Float64Array;
 }
 
+/** Where the rows of a fold (from 0) lie in `order`. */
+export function rowsOfFoldIn({ rowsOfFold }: Pick<Layout, 'rowsOfFold'>, fold: number): { start: number; end: number } {
+  let start = 0;
+  for (let before = 0; before < fold; before++) start += rowsOfFold[before];
+  return { start, end: start + rowsOfFold[fold] };
+}
+
 export interface LayoutOptions {
   /** Fold of each row from 0; absent = one fold. */
   readonly folds?: ArrayLike<number>;

@@ -1,6 +1,6 @@
 import type { CodedProblem } from './coded-columns';
 import { exp64, log64 } from './kernels/plain-functions';
-import type { Layout } from './layout';
+import { rowsOfFoldIn, type Layout } from './layout';
 import type { Standardisation } from './standardisation';
 
 /** The rows of one fold side by side, for what passes do not tell where they leave rows out by counts. */
@@ -17,10 +17,9 @@ export class LeftOutRows {
     private readonly layout: Layout,
     fold: number,
   ) {
-    const { order, rowsOfFold, columns } = layout;
-    let start = 0;
-    for (let before = 0; before < fold; before++) start += rowsOfFold[before];
-    const rows = order.subarray(start, start + rowsOfFold[fold]);
+    const { order, columns } = layout;
+    const { start, end } = rowsOfFoldIn(layout, fold);
+    const rows = order.subarray(start, end);
     this.rows = rows;
     this.eta = new Float64Array(rows.length);
     this.codes = columns.map(({ source }) => {

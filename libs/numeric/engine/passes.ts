@@ -1,6 +1,6 @@
 import * as word from './kernels/descriptor';
 import type { Lane } from './lane';
-import { LANES_DOUBLE, LANES_SINGLE, type Layout, type Sample } from './layout';
+import { LANES_DOUBLE, LANES_SINGLE, rowsOfFoldIn, type Layout, type Sample } from './layout';
 import type { Standardisation } from './standardisation';
 import { Alone, type Crew } from './crew';
 
@@ -93,13 +93,12 @@ export class Passes {
   /** Sets counts of lanes that leave a fold out each: 0 for its rows, 1 for the others. */
   leaveOut(folds: readonly number[]): void {
     const { counts } = this;
-    const { slots, rowsOfFold } = this.layout;
+    const { slots } = this.layout;
     const width = Math.ceil(folds.length / 4) * 4;
     counts.fill(1);
     folds.forEach((fold, l) => {
-      let start = 0;
-      for (let before = 0; before < fold; before++) start += rowsOfFold[before];
-      for (let s = start; s < start + rowsOfFold[fold]; s++) counts[slots[s] * width + l] = 0;
+      const { start, end } = rowsOfFoldIn(this.layout, fold);
+      for (let s = start; s < end; s++) counts[slots[s] * width + l] = 0;
     });
   }
 

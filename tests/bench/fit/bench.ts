@@ -154,7 +154,7 @@ function measurePath(of: BenchCase, sample: BenchSample): BenchResult {
             `  Ours, the first run after standing still: path ${seconds(median(still.map((one) => one.path.seconds)))}, cross-validation ${seconds(median(still.map((one) => one.cv.seconds)))}.`,
           ]
         : []),
-      ...(of.extrapolateFrom
+      ...(glmnet?.cvExtrapolated
         ? [`  glmnet's cross-validation is extrapolated from its path by the ratio of case ${of.extrapolateFrom}.`]
         : []),
       ...(glmnet ? [`  Largest relative difference in deviance ${difference === null ? '-' : figure(difference)}.`] : []),

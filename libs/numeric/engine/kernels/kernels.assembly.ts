@@ -9,24 +9,24 @@ import {
   PACK_TABLE, RESULTS, RESULT_BYTES, SIGNED_WEIGHTS, SINGLES, TABLES, VECTORS,
 } from './descriptor';
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function word(description: usize, place: i32): i32 {
   return load<i32>(description + (<usize>place << 2));
 }
 
 // --- Single precision: exp, the residual ---------------------------------------------------------------------------------
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function single(k: usize): v128 {
   return v128.load(CONSTANTS_AT + (k << 4));
 }
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function step32(p: v128, f: v128, k: usize): v128 {
   return f32x4.add(f32x4.mul(p, f), single(k));
 }
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function exp32(x: v128): v128 {
   const power = f32x4.mul(x, single(0));
   const shifted = f32x4.add(power, single(1));
@@ -40,14 +40,14 @@ import {
 }
 
 /** eta with the sign of the outcome: positive where the model is right. */
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function margin32(eta: v128, signed: v128): v128 {
   const m = v128.xor(eta, v128.andnot(i32x4.splat(0x80000000), signed));
   return f32x4.pmax(single(18), f32x4.pmin(single(17), m));
 }
 
 /** log(1 + e^-m), e = exp(m). */
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function loss32(m: v128, e: v128): v128 {
   const u = f32x4.pmin(f32x4.div(single(8), e), e);
   const far = f32x4.gt(u, single(9));
@@ -62,19 +62,19 @@ import {
   return f32x4.add(log, f32x4.pmax(f32x4.splat(0), f32x4.neg(m)));
 }
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function upper(x: v128): v128 {
   return i8x16.shuffle(x, x, 8, 9, 10, 11, 12, 13, 14, 15, 8, 9, 10, 11, 12, 13, 14, 15);
 }
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function countsAt(place: usize, offset: usize): v128 {
   return f32x4.convert_i32x4_u(i32x4.extend_low_i16x8_u(i16x8.extend_low_i8x16_u(v128.load32_zero(place + offset))));
 }
 
 // --- Single precision: the linear predictor of a block ---------------------------------------------------------------------
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function start32(V: i32, eta: usize, rows: usize, intercepts: usize, offsets: usize): void {
   const stride: usize = V << 4;
   const i0 = v128.load(intercepts);
@@ -92,7 +92,7 @@ import {
   }
 }
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function addOne32(V: i32, eta: usize, rows: usize, t0: usize, c0: usize): void {
   const stride: usize = V << 4;
   let at = eta;
@@ -106,12 +106,12 @@ import {
   }
 }
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function four32(a: v128, b: v128, c: v128, d: v128, e: v128): v128 {
   return f32x4.add(a, f32x4.add(f32x4.add(b, c), f32x4.add(d, e)));
 }
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function addFour32(V: i32, eta: usize, rows: usize, t0: usize, t1: usize, t2: usize, t3: usize, c: usize): void {
   const stride: usize = V << 4;
   let at = eta;
@@ -128,7 +128,7 @@ import {
   }
 }
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function addLinear32(V: i32, eta: usize, rows: usize, slopes: usize, values: usize): void {
   const stride: usize = V << 4;
   const s0 = v128.load(slopes);
@@ -146,7 +146,7 @@ import {
   }
 }
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function predict32(V: i32, description: usize, block: usize, rows: usize, eta: usize): void {
   const packs = <usize>word(description, PACKS);
   const offsets = <usize>word(description, OFFSETS);
@@ -180,13 +180,13 @@ import {
 
 // --- Single precision: residuals of a block ---------------------------------------------------------------------------------
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function residual32(eta: v128, signed: v128): v128 {
   return f32x4.div(signed, f32x4.add(single(8), exp32(margin32(eta, signed))));
 }
 
 /** Writes residuals over eta; adds their sums to `sums` (doubles, one per lane). */
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function residuals32(V: i32, counted: bool, eta: usize, rows: usize, signed: usize, counts: usize, sums: usize): void {
   const stride: usize = V << 4;
   let g0 = f32x4.splat(0);
@@ -228,7 +228,7 @@ import {
 }
 
 /** Adds four singles to four doubles. */
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function flush32(at: usize, x: v128): void {
   v128.store(at, f64x2.add(v128.load(at), f64x2.promote_low_f32x4(x)));
   v128.store(at, f64x2.add(v128.load(at, 16), f64x2.promote_low_f32x4(upper(x))), 16);
@@ -250,7 +250,7 @@ function losses32(stride: usize, eta: usize, rows: usize, signed: usize, sums: u
 }
 
 /** Weights in place of residuals: what standardisation of a lane needs. */
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function weights32(V: i32, counted: bool, eta: usize, rows: usize, signed: usize, counts: usize): void {
   let at = eta;
   for (let i: usize = 0; i < rows; i++) {
@@ -265,7 +265,7 @@ function losses32(stride: usize, eta: usize, rows: usize, signed: usize, sums: u
 
 // --- Single precision: sums of residuals by code --------------------------------------------------------------------------------
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function sumOne32(V: i32, residuals: usize, rows: usize, h0: usize, c0: usize): void {
   const stride: usize = V << 4;
   let at = residuals;
@@ -279,7 +279,7 @@ function losses32(stride: usize, eta: usize, rows: usize, signed: usize, sums: u
   }
 }
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function sumFour32(V: i32, residuals: usize, rows: usize, h0: usize, h1: usize, h2: usize, h3: usize, c: usize): void {
   const stride: usize = V << 4;
   let at = residuals;
@@ -313,7 +313,7 @@ function losses32(stride: usize, eta: usize, rows: usize, signed: usize, sums: u
 }
 
 /** Sums of residual times value over the rows of a block, in singles, then added to the doubles at `sums`. */
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function sumLinear32(V: i32, residuals: usize, rows: usize, values: usize, sums: usize): void {
   const stride: usize = V << 4;
   let g0 = f32x4.splat(0);
@@ -335,7 +335,7 @@ function losses32(stride: usize, eta: usize, rows: usize, signed: usize, sums: u
   if (V > 3) flush32(sums + 96, g3);
 }
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function chunk32(V: i32, description: usize, chunk: usize, scratch: usize): void {
   const stride: usize = V << 4;
   const packs = <usize>word(description, PACKS);
@@ -458,19 +458,19 @@ export function spread32(description: usize): void {
 
 // --- Double precision ----------------------------------------------------------------------------------------------------------
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function double(k: usize): v128 {
   return v128.load(CONSTANTS_AT + SINGLES * 16 + (k << 4));
 }
 
 /** Four neighbouring powers: a + b x + (c + d x) x^2. */
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function four64(k: usize, x: v128, square: v128): v128 {
   const low = f64x2.add(double(k), f64x2.mul(double(k + 1), x));
   return f64x2.add(low, f64x2.mul(f64x2.add(double(k + 2), f64x2.mul(double(k + 3), x)), square));
 }
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function exp64(x: v128): v128 {
   const shifted = f64x2.add(f64x2.mul(x, double(0)), double(1));
   const n = f64x2.sub(shifted, double(1));
@@ -484,7 +484,7 @@ export function spread32(description: usize): void {
 }
 
 /** log(1 + u), u from 0 to 1, by 2 atanh(f / (2 + f)). */
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function log64(u: v128): v128 {
   const far = f64x2.gt(u, double(16));
   const f = v128.bitselect(f64x2.mul(f64x2.sub(u, double(4)), double(17)), u, far);
@@ -495,7 +495,7 @@ export function spread32(description: usize): void {
   return f64x2.add(f64x2.mul(p, s), v128.and(far, double(26)));
 }
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function predict64(V: i32, description: usize, block: usize, rows: usize, eta: usize): void {
   const stride: usize = V << 4;
   const packs = <usize>word(description, PACKS);
@@ -561,7 +561,7 @@ export function spread32(description: usize): void {
 }
 
 /** Writes residuals over eta; adds residuals and losses to the doubles at `sums` and `losses`. */
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function residuals64(V: i32, eta: usize, rows: usize, signed: usize, sums: usize, losses: usize): void {
   const stride: usize = V << 4;
   for (let v: usize = 0; v < <usize>V; v++) {
@@ -588,7 +588,7 @@ export function spread32(description: usize): void {
   }
 }
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function chunk64(V: i32, description: usize, chunk: usize, scratch: usize): void {
   const stride: usize = V << 4;
   const packs = <usize>word(description, PACKS);
@@ -735,12 +735,12 @@ export function spread64(description: usize): void {
 
 // --- The Gram matrix -------------------------------------------------------------------------------------------------------------
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function total(x: v128): f64 {
   return <f64>f32x4.extract_lane(x, 0) + <f64>f32x4.extract_lane(x, 1) + (<f64>f32x4.extract_lane(x, 2) + <f64>f32x4.extract_lane(x, 3));
 }
 
-// @ts-ignore: decorator
+// @ts-ignore: AssemblyScript puts a decorator before a function, TypeScript does not know that
 @inline function addTotal(at: usize, x: v128): void {
   store<f64>(at, load<f64>(at) + total(x));
 }
