@@ -1,5 +1,9 @@
 import { createHash } from 'node:crypto';
+import supertest from 'supertest';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { buildApp } from '../../server/src/app';
+import { openContext } from '../../server/src/context';
+import { createLog } from '../../server/src/logging/log';
 import { IntakeServer, type Visitor } from '../support/intake';
 
 let server: IntakeServer;
@@ -70,6 +74,47 @@ describe('sending a file', () => {
     await modeller.delete(url).set('Tus-Resumable', '1.0.0').expect(204);
     await modeller.askUpload(url).expect(404);
     expect((await list(modeller)).uploads).toEqual([]);
+  });
+
+  it('tells the SHA-256 of what has arrived, so that another file of this size is told apart before going on', async () => {
+    const bytes = large(14);
+    const most = bytes.length - 100_000;
+    const { headers } = await modeller.beginUpload(modelId, bytes.length).expect(201);
+    const url = headers.location;
+    const arrived = async () => (await modeller.arrivedOf(url).expect(200)).body;
+    expect(await arrived()).toEqual({ offset: 0, sha256: sha256(Buffer.alloc(0)) });
+    for (const [from, to] of [
+      [0, 1000],
+      [1000, most],
+    ]) {
+      await modeller.sendUpload(url, from, bytes.subarray(from, to)).expect(204);
+      expect(await arrived()).toEqual({ offset: to, sha256: sha256(bytes.subarray(0, to)) });
+    }
+    // As after a restart of the process: nothing but the stored chunks tells it.
+    const afresh = await openContext(server.context.config, createLog('silent'));
+    const told = await supertest(buildApp(afresh)).get(`${url}/arrived`).set('Cookie', modeller.credentials().cookie).expect(200);
+    await afresh.close();
+    expect(told.body).toEqual(await arrived());
+    await colleague.arrivedOf(url).expect(404);
+    await validator.arrivedOf(url).expect(403);
+
+    // The bytes sent do not make the file that the sender has: no sample, and what was sent before stays an upload.
+    const end = bytes.subarray(most);
+    const changed = Buffer.from(bytes);
+    changed[17] ^= 1;
+    const refused = await modeller.sendUpload(url, most, end).set('Upload-Sha256', sha256(changed)).expect(422);
+    expect(refused.body).toMatchObject({ code: 'other-file', detail: expect.stringContaining('No sample was made of it.') });
+    expect((await modeller.sendUpload(url, most, end).set('Upload-Sha256', 'abc').expect(422)).body.problems).toMatchObject([
+      { code: 'not-a-fingerprint' },
+    ]);
+    const between = await list(modeller);
+    expect(between.samples.map((sample: { sha256: string }) => sample.sha256)).not.toContain(sha256(bytes));
+    expect(between.uploads).toMatchObject([{ offset: most }]);
+    await modeller.sendUpload(url, most, end).set('Upload-Sha256', sha256(bytes).toUpperCase()).expect(204);
+    const after = await list(modeller);
+    expect(after.samples[0].sha256).toBe(sha256(bytes));
+    expect(after.uploads).toEqual([]);
+    await modeller.arrivedOf(url).expect(404);
   });
 
   it('is refused without the token of the page, like any change', async () => {

@@ -8,7 +8,7 @@ import { type Installation, install } from '../support/installation';
 
 /**
  * An upload that is broken off because the web process dies: started again, the page opened anew and the same file chosen, it goes on from what the
- * server has. On an installation of its own, so that nothing else loses its server.
+ * server has, but not with another file of this name and size. On an installation of its own, so that nothing else loses its server.
  */
 const piece = 8 * 1024 * 1024;
 const account = { role: 'modeller', email: 'marian@saltmarsh.example', password: 'samphire-grows-on-the-marsh' };
@@ -61,6 +61,13 @@ test('an upload goes on where it stopped when the web process was killed', async
   await server.start('web');
 
   const again = await context.newPage();
+  const slow = await context.newCDPSession(again);
+  await slow.send('Network.emulateNetworkConditions', {
+    offline: false,
+    latency: 0,
+    downloadThroughput: -1,
+    uploadThroughput: 4 * 1024 * 1024,
+  });
   await again.goto(`/models/${model.id}/sample`);
   const between = (await (await again.request.get(`/api/models/${model.id}/samples`)).json()) as SampleList;
   expect(between.samples).toEqual([]);
@@ -76,6 +83,17 @@ test('an upload goes on where it stopped when the web process was killed', async
     if (/\/uploads/.test(request.url()) && ['POST', 'PATCH'].includes(request.method()))
       sent.push({ method: request.method(), offset: Number(request.headers()['upload-offset']) });
   });
+  // Changed meanwhile, at the same name and size: what has arrived is not of this file, and nothing of it is sent.
+  const changed = Buffer.from(bytes);
+  changed.write('2025-12-24', bytes.indexOf('2024-03-01', piece / 2));
+  writeFileSync(file, changed);
+  await again.getByLabel('CSV file').setInputFiles(file);
+  await expect(again.getByRole('alert')).toContainText('What has arrived is not from this file as it is now');
+  expect(sent).toEqual([]);
+  await again.getByRole('button', { name: 'Leave it' }).click();
+  await expect(again.getByRole('region', { name: 'Unfinished uploads' }).first()).toContainText('applicants.csv');
+
+  writeFileSync(file, bytes);
   await again.getByLabel('CSV file').setInputFiles(file);
   await expect(again).toHaveURL(/\/reading$/, { timeout: 60_000 });
   // Nothing was begun anew: the first piece sent is the one after what had arrived.
@@ -84,5 +102,24 @@ test('an upload goes on where it stopped when the web process was killed', async
   const after = (await (await again.request.get(`/api/models/${model.id}/samples`)).json()) as SampleList;
   expect(after.uploads).toEqual([]);
   expect(after.samples).toMatchObject([{ size: bytes.length, sha256: createHash('sha256').update(bytes).digest('hex') }]);
+
+  // And begun anew where that is what is meant: the file as it is now arrives, and nothing of the one before.
+  await again.goto(`/models/${model.id}/sample`);
+  await again.getByLabel('CSV file').setInputFiles(file);
+  const secondBar = again.getByRole('progressbar', { name: 'Received' });
+  await expect.poll(async () => Number(await secondBar.getAttribute('aria-valuenow')), { intervals: [20] }).toBeGreaterThan(45);
+  await again.getByRole('button', { name: 'Stop for now' }).click();
+  await expect(again.getByText(/stopped; what has arrived is kept/)).toBeVisible();
+  await again.reload();
+  await expect(again.getByRole('region', { name: 'Unfinished uploads' }).first()).toContainText('applicants.csv');
+  writeFileSync(file, changed);
+  await again.getByLabel('CSV file').setInputFiles(file);
+  await again.getByRole('button', { name: 'Begin anew' }).click();
+  await expect(again).toHaveURL(/\/reading$/, { timeout: 60_000 });
+  const last = (await (await again.request.get(`/api/models/${model.id}/samples`)).json()) as SampleList;
+  expect(last.uploads).toEqual([]);
+  expect(last.samples.map(({ sha256 }) => sha256)).toEqual(
+    [changed, bytes].map((one) => createHash('sha256').update(one).digest('hex')),
+  );
   await context.close();
 });

@@ -157,6 +157,8 @@ export class Visitor {
       .set('Content-Type', 'application/offset+octet-stream')
       .send(bytes);
 
+  arrivedOf = (url: string): supertest.Test => this.get(`${url}/arrived`);
+
   askUpload = (url: string): supertest.Test => this.head(url).set('Tus-Resumable', '1.0.0');
 
   /** Waits until a run has ended. */

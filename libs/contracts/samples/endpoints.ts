@@ -8,7 +8,7 @@ import { ColumnLabels, Dictionary, DictionaryContent, DictionaryFile } from './d
 import { KeptSamples, NewErasure } from './erasure';
 import { ColumnQualityDetail, NewFlagAnswer, QualityColumnQuery, QualityState } from './quality';
 import { Preview, PreviewRequest } from './reading';
-import { DefinitionParams, Sample, SampleList, SampleListParams, SampleParams, UploadParams } from './schema';
+import { ArrivedPart, DefinitionParams, Sample, SampleList, SampleListParams, SampleParams, UploadParams } from './schema';
 
 const ofModel = '/api/models/:modelId' as const;
 const ofSample = `${ofModel}/samples/:sampleId` as const;
@@ -39,10 +39,17 @@ export const askUpload = defineEndpoint({
   response: 'nothing',
   status: 200,
 });
+export const fingerprintUpload = defineEndpoint({
+  method: 'GET',
+  path: `${ofModel}/uploads/:uploadId/arrived`,
+  summary: 'SHA-256 of what has arrived of a file, to be compared before going on',
+  params: UploadParams,
+  response: ArrivedPart,
+});
 export const sendUpload = defineEndpoint({
   method: 'PATCH',
   path: `${ofModel}/uploads/:uploadId`,
-  summary: 'Send on from the offset (tus)',
+  summary: 'Send on from the offset (tus); Upload-Sha256 states the SHA-256 of the whole file',
   params: UploadParams,
   body: 'bytes',
   response: 'nothing',

@@ -60,6 +60,16 @@ export const UploadSummary = z
   .meta({ id: 'UploadSummary' });
 export type UploadSummary = z.infer<typeof UploadSummary>;
 
+/** What has arrived of a file: before going on, whoever sends it compares the beginning of theirs. */
+export const ArrivedPart = z
+  .object({
+    offset: z.number(),
+    /** Of the first `offset` bytes (FIPS 180-4), in lower-case hex. */
+    sha256: z.string(),
+  })
+  .meta({ id: 'ArrivedPart' });
+export type ArrivedPart = z.infer<typeof ArrivedPart>;
+
 export const SampleList = z
   .object({
     samples: z.array(SampleSummary),

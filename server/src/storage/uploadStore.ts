@@ -73,6 +73,20 @@ export class UploadStore extends DataStore {
     });
   }
 
+  /**
+   * How much of a file has arrived, and the SHA-256 (FIPS 180-4) of these bytes in hex.
+   *
+   * @throws UploadFault 404 where there is no such upload or it has arrived as a whole
+   * @example
+   * const { offset, sha256 } = await store.arrived(id); // sha256 of the first `offset` bytes
+   */
+  async arrived(id: string): Promise<{ offset: number; sha256: string }> {
+    const { received, size } = await this.find(id);
+    if (received === size) throw new UploadFault(404, 'The upload has arrived');
+    const { hash } = await this.fingerprint(id, received);
+    return { offset: received, sha256: hash.copy().digest('hex') };
+  }
+
   override async remove(id: string): Promise<void> {
     this.hashes.delete(id);
     await rows(this.options.sequelize, 'DELETE FROM raw_files WHERE id = $1 AND completed_at IS NULL RETURNING id', [id]);

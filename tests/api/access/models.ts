@@ -36,14 +36,15 @@ const ofSample = '/api/models/:modelId/samples/:sampleId';
 
 const spare = { params: { sampleId: 'spareSampleId' } };
 /** An upload belongs to whoever began it. */
-const ownUpload = (method: string): AccessRow => ({
-  ...developsModel(`${method} /api/models/:modelId/uploads/:uploadId`),
+const ownUpload = (method: string, tail = ''): AccessRow => ({
+  ...developsModel(`${method} /api/models/:modelId/uploads/:uploadId${tail}`),
   headers: tus,
 });
 
 export const sampleRows: readonly AccessRow[] = [
   developsModel('POST /api/models/:modelId/uploads', { 'Tus-Resumable': '1.0.0' }),
   ownUpload('HEAD'),
+  ownUpload('GET', '/arrived'),
   ownUpload('PATCH'),
   ownUpload('DELETE'),
   readsModel('GET /api/models/:modelId/samples'),

@@ -4,7 +4,7 @@ import type { Request as ExpressRequest, Response as ExpressResponse } from 'exp
 import type { Context } from '../../context';
 import { canAddSample, canSendUpload } from '../../policies/samples';
 import { findModel } from '../../services/models/find-model';
-import { answerUpload, beginUpload, findUpload } from '../../services/samples/uploads';
+import { answerUpload, beginUpload, findUpload, fingerprintUpload } from '../../services/samples/uploads';
 import { type Call, type Route, defineRoute } from '../http/route';
 
 /** The tus protocol: our recipe authenticates and authorises, @tus/server answers. */
@@ -23,6 +23,12 @@ export function uploadRoutes(): Route[] {
         return undefined;
       },
     }),
+    defineRoute(endpoints.fingerprintUpload, {
+      access: 'signed-in',
+      find: findUploadOf,
+      authorise: ({ person, subject }) => canSendUpload(person, subject.model, subject.upload.personId),
+      act: ({ context, subject }) => fingerprintUpload(context, subject.upload.id),
+    }),
     ...[endpoints.askUpload, endpoints.sendUpload, endpoints.dropUpload].map((endpoint) =>
       defineRoute(endpoint, {
         access: 'signed-in',
@@ -38,7 +44,8 @@ export function uploadRoutes(): Route[] {
   ];
 }
 
-type UploadEndpoint = typeof endpoints.askUpload | typeof endpoints.sendUpload | typeof endpoints.dropUpload;
+type UploadEndpoint =
+  typeof endpoints.fingerprintUpload | typeof endpoints.askUpload | typeof endpoints.sendUpload | typeof endpoints.dropUpload;
 
 async function findUploadOf({ context, params }: Pick<Call<UploadEndpoint, 'signed-in'>, 'context' | 'params'>) {
   const model = await findModel(context.sequelize, params.modelId);

@@ -1,6 +1,8 @@
+import { AsyncLocalStorage } from 'node:async_hooks';
 import { randomUUID } from 'node:crypto';
 import { problemCodes } from '@tallystone/contracts/problems/codes';
-import { fileLimits } from '@tallystone/contracts/samples/schema';
+import { type ArrivedPart, fileLimits } from '@tallystone/contracts/samples/schema';
+import { wholeFileHeader } from '@tallystone/contracts/samples/upload';
 import { Metadata, Server } from '@tus/server';
 import type { Transaction } from 'sequelize';
 import type { Context } from '../../context';
@@ -10,7 +12,7 @@ import type { Actor } from '../../models/person';
 import { RawFile, Sample } from '../../models/sample';
 import { Problem, conflict, invalid } from '../../problems/problem';
 import { sniff } from '../../reading/index';
-import { type ArrivedFile, UploadStore } from '../../storage/uploadStore';
+import { type ArrivedFile, UploadFault, UploadStore } from '../../storage/uploadStore';
 import type { FoundModel } from '../models/find-model';
 import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
@@ -19,7 +21,14 @@ const mostUnfinished = 10;
 /** Unfinished uploads that nobody has sent to for a week are dropped when the next one begins. */
 const keptDays = 7;
 
-const servers = new WeakMap<Context, Server>();
+interface Receiver {
+  readonly server: Server;
+  readonly store: UploadStore;
+}
+
+const receivers = new WeakMap<Context, Receiver>();
+/** SHA-256 of the whole file that the request under way states: the protocol has no place for it, and two requests for one upload keep theirs apart. */
+const stated = new AsyncLocalStorage<string | null>();
 
 /** What an upload is about: found before anything of the protocol is done. */
 export interface FoundUpload {
@@ -42,14 +51,34 @@ export async function findUpload(context: Context, modelId: string, uploadId: st
  * @throws Problem for everything that goes wrong, so that it is told as problem details like anything else
  */
 export async function answerUpload(context: Context, request: Request): Promise<Response> {
-  let server = servers.get(context);
-  if (!server) {
-    server = openServer(context);
-    servers.set(context, server);
+  const whole = request.headers.get(wholeFileHeader);
+  if (whole !== null && !/^[0-9a-f]{64}$/i.test(whole)) {
+    throw invalid([
+      {
+        code: 'not-a-fingerprint',
+        message: 'A SHA-256 is 64 hexadecimal digits.',
+        where: { field: wholeFileHeader },
+      },
+    ]);
   }
-  const response = await server.handleWeb(request);
+  const { server } = receiverOf(context);
+  const response = await stated.run(whole?.toLowerCase() ?? null, () => server.handleWeb(request));
   if (response.status < 400) return response;
   throw problemOfResponse(response.status, await response.text());
+}
+
+/**
+ * What has arrived of an unfinished upload, with its SHA-256.
+ *
+ * @throws Problem 404 where it has arrived as a whole or was dropped, 409 where more of it arrives just now
+ */
+export async function fingerprintUpload(context: Context, uploadId: string): Promise<ArrivedPart> {
+  try {
+    return await receiverOf(context).store.arrived(uploadId);
+  } catch (cause) {
+    if (cause instanceof UploadFault) throw problemOfResponse(cause.status_code, cause.body);
+    throw cause;
+  }
 }
 
 /**
@@ -106,16 +135,25 @@ export async function beginUpload(context: Context, model: FoundModel, person: A
   });
 }
 
-function openServer(context: Context): Server {
+function receiverOf(context: Context): Receiver {
+  const known = receivers.get(context);
+  if (known) return known;
+  const opened = openReceiver(context);
+  receivers.set(context, opened);
+  return opened;
+}
+
+function openReceiver(context: Context): Receiver {
   const { sequelize, config } = context;
-  return new Server({
+  const store = new UploadStore({
+    sequelize,
+    key: config.keys.rawFiles.subarray(0, 32),
+    inspect: refuseByContent,
+    complete: receiveSample,
+  });
+  const server = new Server({
     path: '/api/models',
-    datastore: new UploadStore({
-      sequelize,
-      key: config.keys.rawFiles.subarray(0, 32),
-      inspect: refuseByContent,
-      complete: receiveSample,
-    }),
+    datastore: store,
     maxSize: fileLimits.bytes,
     allowedOrigins: [],
     relativeLocation: true,
@@ -133,10 +171,19 @@ function openServer(context: Context): Server {
       return undefined;
     },
   });
+  return { server, store };
 }
 
 /** The file is here as a whole: it becomes a sample that waits for its reading choices. Runs in the transaction of the last chunk. */
 async function receiveSample(tx: Transaction, file: ArrivedFile): Promise<void> {
+  const whole = stated.getStore() ?? null;
+  if (whole !== null && whole !== file.sha256) {
+    throw new Problem(
+      422,
+      'other-file',
+      'What has arrived is not the file as it is now: it was changed while it was sent. No sample was made of it. Begin anew.',
+    );
+  }
   const sequelize = Sample.sequelize!;
   await rows(sequelize, 'SELECT id FROM models WHERE id = $1 FOR UPDATE', [file.modelId], tx);
   const [{ number }] = await rows<{ number: number }>(

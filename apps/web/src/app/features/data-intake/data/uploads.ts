@@ -1,7 +1,11 @@
-import { HttpXsrfTokenExtractor } from '@angular/common/http';
+import { HttpClient, HttpXsrfTokenExtractor } from '@angular/common/http';
 import { Injectable, inject, signal } from '@angular/core';
+import type { ArrivedPart } from '@tallystone/contracts/samples/schema';
+import { wholeFileHeader } from '@tallystone/contracts/samples/upload';
+import { firstValueFrom } from 'rxjs';
 import type { DetailedError, Upload } from 'tus-js-client';
 import { Problem } from '../../../core/http/problem';
+import { fingerprint } from './file-fingerprint';
 import type { UploadSummary } from './samples';
 
 /** A file on its way from this page. */
@@ -9,8 +13,11 @@ export interface Sending {
   readonly fileName: string;
   readonly size: number;
   readonly sent: number;
-  /** waiting: the connection is away and is tried again. */
-  readonly state: 'sending' | 'waiting' | 'stopped' | 'failed';
+  /**
+   * comparing: what the server has is compared with the file. waiting: the connection is away and is tried again. differs: what the server has
+   * is not of this file as it is now.
+   */
+  readonly state: 'comparing' | 'sending' | 'waiting' | 'stopped' | 'differs' | 'failed';
   readonly problem: Problem | null;
 }
 
@@ -20,34 +27,86 @@ const retryAfterMs = [0, 1000, 3000, 5000, 10_000, 20_000, 30_000, 60_000];
 
 /**
  * Sends one file at a time to a model, by the tus protocol: it goes on after a lost connection by itself, and after a closed browser when the
- * same file is chosen again. Which part has arrived is known by the server alone.
+ * same file is chosen again. Which part has arrived is known by the server alone. Name and size do not tell that it is the same file: what the
+ * server has is compared with its beginning, and the whole with what the server has received in the end.
  */
 @Injectable({ providedIn: 'root' })
 export class Uploads {
   private readonly token = inject(HttpXsrfTokenExtractor);
+  private readonly http = inject(HttpClient);
   private readonly now = signal<Sending | null>(null);
   private upload: Upload | null = null;
+  /** Ends the hashing of a file that is no longer sent. */
+  private hashing: AbortController | null = null;
+  /** What is sent from its beginning when somebody says so. */
+  private other: { readonly modelId: string; readonly file: File; readonly url: string } | null = null;
 
   readonly sending = this.now.asReadonly();
 
-  /** Resolves once the file has arrived as a whole. `unfinished` = uploads that the server still holds for this person. */
-  async send(modelId: string, file: File, unfinished: readonly UploadSummary[]): Promise<void> {
-    const tus = await import('tus-js-client');
+  /**
+   * `arrived` once the server has the file as a whole; `differs` where what it has is of another file, which `beginAnew` then replaces;
+   * `dropped` where it was given up meanwhile. `unfinished` = uploads that the server still holds for this person.
+   *
+   * @throws Problem for everything else
+   */
+  async send(modelId: string, file: File, unfinished: readonly UploadSummary[]): Promise<'arrived' | 'differs' | 'dropped'> {
     const resumed = unfinished.find(({ fileName, size }) => fileName === file.name && size === file.size);
-    this.now.set({ fileName: file.name, size: file.size, sent: resumed?.offset ?? 0, state: 'sending', problem: null });
-    await new Promise<void>((resolve, reject) => {
-      this.upload = new tus.Upload(file, {
+    if (!resumed) return this.transfer(modelId, file, null);
+    const url = `/api/models/${modelId}/uploads/${resumed.id}`;
+    this.now.set({ fileName: file.name, size: file.size, sent: resumed.offset, state: 'comparing', problem: null });
+    const stop = this.hashAnew();
+    try {
+      const arrived = await firstValueFrom(this.http.get<ArrivedPart>(`${url}/arrived`));
+      const ours = await fingerprint(file, arrived.offset, { signal: stop });
+      if (ours !== arrived.sha256) return this.differs(modelId, file, url);
+    } catch (cause) {
+      if (stop.aborted) return 'dropped';
+      throw cause instanceof Problem ? cause : unreadable(cause);
+    }
+    return this.transfer(modelId, file, url);
+  }
+
+  /** Has the server forget what it has of another file, and sends this one from its beginning. */
+  async beginAnew(): Promise<'arrived' | 'differs' | 'dropped'> {
+    if (this.other === null) return 'dropped';
+    const { modelId, file, url } = this.other;
+    this.patch({ state: 'sending', sent: 0, problem: null });
+    await this.terminate(url);
+    return this.transfer(modelId, file, null);
+  }
+
+  private async transfer(modelId: string, file: File, url: string | null): Promise<'arrived' | 'differs'> {
+    const tus = await import('tus-js-client');
+    this.other = null;
+    this.now.update((sending) => ({
+      fileName: file.name,
+      size: file.size,
+      sent: url === null ? 0 : (sending?.sent ?? 0),
+      state: 'sending',
+      problem: null,
+    }));
+    const whole = fingerprint(file, file.size, { signal: this.hashAnew() });
+    // Heard where it is awaited, with the last piece.
+    whole.catch(() => undefined);
+    return new Promise((resolve, reject) => {
+      const upload = new tus.Upload(file, {
         endpoint: `/api/models/${modelId}/uploads`,
-        uploadUrl: resumed ? `/api/models/${modelId}/uploads/${resumed.id}` : null,
+        uploadUrl: url,
         chunkSize: pieceBytes,
         retryDelays: retryAfterMs,
         storeFingerprintForResuming: false,
         metadata: { filename: file.name },
-        onBeforeRequest: (request) => {
+        onBeforeRequest: async (request) => {
           const token = this.token.getToken();
           if (token !== null) request.setHeader('X-XSRF-TOKEN', token);
+          const from = Number(request.getHeader('Upload-Offset') ?? Number.NaN);
+          if (request.getMethod() !== 'PATCH' || from + pieceBytes < file.size) return;
+          request.setHeader(wholeFileHeader, await whole.catch((cause: unknown) => Promise.reject(unreadable(cause))));
+          // Stopped while the file was still being hashed: a request that has not gone out is not ended by the library.
+          if (this.now()?.state === 'stopped') throw new DOMException('Stopped', 'AbortError');
         },
         onShouldRetry: (error) => {
+          if (ofThePage(error)) return false;
           const status = statusOf(error);
           const again = status === 0 || status === 409 || status === 423 || status === 429 || status >= 500;
           if (again) this.patch({ state: 'waiting' });
@@ -56,20 +115,41 @@ export class Uploads {
         onProgress: (sent) => this.patch({ sent, state: 'sending' }),
         onSuccess: () => {
           this.now.set(null);
-          resolve();
+          resolve('arrived');
         },
         onError: (error) => {
           const problem = problemOf(error);
+          if (problem.code === 'other-file' && upload.url !== null) {
+            resolve(this.differs(modelId, file, upload.url));
+            return;
+          }
           this.patch({ state: 'failed', problem });
           reject(problem);
         },
       });
-      this.upload.start();
+      this.upload = upload;
+      upload.start();
     });
+  }
+
+  private differs(modelId: string, file: File, url: string): 'differs' {
+    this.other = { modelId, file, url };
+    this.patch({ state: 'differs' });
+    return 'differs';
+  }
+
+  private hashAnew(): AbortSignal {
+    this.hashing?.abort();
+    this.hashing = new AbortController();
+    return this.hashing.signal;
   }
 
   /** Stops sending; what has arrived stays with the server and can be taken up again. */
   async stop(): Promise<void> {
+    if (this.now()?.state === 'comparing') {
+      this.clear();
+      return;
+    }
     await this.upload?.abort();
     this.patch({ state: 'stopped' });
   }
@@ -86,14 +166,20 @@ export class Uploads {
   }
 
   clear(): void {
+    this.hashing?.abort();
     this.upload = null;
+    this.other = null;
     this.now.set(null);
   }
 
   /** Drops an unfinished upload of an earlier visit. */
   async forget(modelId: string, uploadId: string): Promise<void> {
+    await this.terminate(`/api/models/${modelId}/uploads/${uploadId}`);
+  }
+
+  private async terminate(url: string): Promise<void> {
     const { Upload } = await import('tus-js-client');
-    await Upload.terminate(`/api/models/${modelId}/uploads/${uploadId}`, {
+    await Upload.terminate(url, {
       onBeforeRequest: (request) => request.setHeader('X-XSRF-TOKEN', this.token.getToken() ?? ''),
     });
   }
@@ -107,8 +193,21 @@ function statusOf(error: Error | DetailedError): number {
   return 'originalResponse' in error ? (error.originalResponse?.getStatus() ?? 0) : 0;
 }
 
+/** A file that cannot be read any more, because it was changed or removed since it was chosen. */
+function unreadable(cause: unknown): Problem {
+  const why = cause instanceof Error ? cause.message : String(cause);
+  return new Problem(0, 'unreadable', 'The file cannot be read any more', `Choose it again. The browser says: ${why}`);
+}
+
+/** What went wrong on this side before a request went out. */
+function ofThePage(error: Error | DetailedError): Problem | null {
+  return 'causingError' in error && error.causingError instanceof Problem ? error.causingError : null;
+}
+
 /** What the server said, or that it was not reached. */
 function problemOf(error: Error | DetailedError): Problem {
+  const own = ofThePage(error);
+  if (own) return own;
   const status = statusOf(error);
   const text = 'originalResponse' in error ? (error.originalResponse?.getBody() ?? '') : '';
   try {

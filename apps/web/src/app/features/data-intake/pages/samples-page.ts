@@ -45,6 +45,8 @@ const runTitles: Readonly<Record<string, string>> = {
           (stop)="uploads.stop()"
           (goOn)="uploads.goOn()"
           (dropped)="drop()"
+          (anew)="beginAnew()"
+          (left)="leave()"
         />
       }
       @if (unfinished().length > 0) {
@@ -61,7 +63,9 @@ const runTitles: Readonly<Record<string, string>> = {
               <button matButton type="button" (click)="forget(row)">Drop</button>
             </ng-template>
           </ts-table>
-          <p class="ts-caption">Choose the same file again, and it goes on from where it stopped.</p>
+          <p class="ts-caption">
+            Choose the same file again, and it goes on from where it stopped, once its beginning was found to be what has arrived.
+          </p>
         </section>
       }
       @for (run of reading(); track run.id) {
@@ -175,11 +179,25 @@ export class SamplesPage {
     return row.definitions > 0 ? 'Defined' : 'Define it';
   }
 
-  protected async send(file: File): Promise<void> {
+  protected send(file: File): Promise<void> {
+    return this.receive(() => this.uploads.send(this.modelId(), file, this.value()?.uploads ?? []));
+  }
+
+  protected beginAnew(): Promise<void> {
+    return this.receive(() => this.uploads.beginAnew());
+  }
+
+  protected leave(): void {
+    this.uploads.clear();
+    this.list.reload();
+  }
+
+  private async receive(sent: () => Promise<'arrived' | 'differs' | 'dropped'>): Promise<void> {
     this.failure.set(null);
     try {
-      await this.uploads.send(this.modelId(), file, this.value()?.uploads ?? []);
+      const outcome = await sent();
       this.list.reload();
+      if (outcome !== 'arrived') return;
       await this.current.reload();
       const list = await this.newest();
       if (list) await this.router.navigate(['/models', this.modelId(), 'sample', list, 'reading']);

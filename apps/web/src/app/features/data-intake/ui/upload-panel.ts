@@ -7,7 +7,7 @@ export interface UploadView {
   readonly fileName: string;
   readonly size: number;
   readonly sent: number;
-  readonly state: 'sending' | 'waiting' | 'stopped' | 'failed';
+  readonly state: 'comparing' | 'sending' | 'waiting' | 'stopped' | 'differs' | 'failed';
 }
 
 /** Where a file is dropped or chosen, and how far it has come. The file input does everything that dropping does. */
@@ -32,13 +32,30 @@ export interface UploadView {
         >
           <div class="done" [style.width.%]="percent()"></div>
         </div>
+        @if (view.state === 'differs') {
+          <p role="alert">
+            What has arrived is not from this file as it is now: the name and the size are the same, the bytes are not. No sample
+            was made of it. Begin anew, and what had arrived is thrown away; or leave it, to send the file that it came from.
+          </p>
+        }
         <div class="ts-actions">
-          @if (view.state === 'sending' || view.state === 'waiting') {
-            <button matButton type="button" (click)="stop.emit()">Stop for now</button>
-          } @else {
-            <button matButton="outlined" type="button" (click)="goOn.emit()">Go on</button>
+          @switch (view.state) {
+            @case ('comparing') {
+              <button matButton type="button" (click)="stop.emit()">Stop for now</button>
+            }
+            @case ('differs') {
+              <button matButton="filled" type="button" (click)="anew.emit()">Begin anew</button>
+              <button matButton type="button" (click)="left.emit()">Leave it</button>
+            }
+            @default {
+              @if (view.state === 'sending' || view.state === 'waiting') {
+                <button matButton type="button" (click)="stop.emit()">Stop for now</button>
+              } @else {
+                <button matButton="outlined" type="button" (click)="goOn.emit()">Go on</button>
+              }
+              <button matButton type="button" (click)="dropped.emit()">Drop it</button>
+            }
           }
-          <button matButton type="button" (click)="dropped.emit()">Drop it</button>
         </div>
       </div>
     } @else {
@@ -101,6 +118,10 @@ export class UploadPanel {
   readonly stop = output();
   readonly goOn = output();
   readonly dropped = output();
+  /** Throw away what has arrived of another file, and begin with this one. */
+  readonly anew = output();
+  /** Send neither. */
+  readonly left = output();
   protected readonly over = signal(false);
 
   protected readonly percent = computed(() => {
@@ -111,6 +132,8 @@ export class UploadPanel {
     const view = this.sending();
     if (!view) return '';
     const part = `${bytes(view.sent)} of ${bytes(view.size)} (${share(view.size > 0 ? view.sent / view.size : 0, 0)})`;
+    if (view.state === 'comparing') return `${bytes(view.sent)} have arrived earlier: compared with this file before it goes on`;
+    if (view.state === 'differs') return `${bytes(view.sent)} have arrived, of another file`;
     if (view.state === 'waiting') return `${part}: the connection is away and is tried again by itself`;
     if (view.state === 'stopped') return `${part}: stopped; what has arrived is kept`;
     if (view.state === 'failed') return `${part}: not taken`;
