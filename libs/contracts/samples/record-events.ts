@@ -19,6 +19,8 @@ export const sampleEvents = [
       development: z.int(),
       holdOut: z.int(),
       outOfTime: z.int(),
+      /** Identifiers that reading had kept in clear, and that are keyed hashes from then on. */
+      hashed: z.array(z.string()).optional(),
     }),
   }),
   recordEvent('sample.flag-answered', 'sample', {

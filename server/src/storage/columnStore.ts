@@ -53,6 +53,30 @@ export async function storeContents(
   }
 }
 
+/** One segment of one column, coded. */
+export interface ColumnContent {
+  readonly rows: number;
+  readonly content: Uint8Array;
+}
+
+/** Puts other segments in place of those of one column, in order. What stood there is gone with the transaction. */
+export async function replaceColumn(
+  sequelize: Sequelize,
+  tx: Transaction,
+  readingId: string,
+  position: number,
+  contents: readonly ColumnContent[],
+): Promise<void> {
+  await sequelize.query('DELETE FROM column_segments WHERE reading_id = $1 AND position = $2', {
+    bind: [readingId, position],
+    transaction: tx,
+  });
+  for (const [segment, { rows: count, content }] of contents.entries()) {
+    const bytes = Buffer.from(content.buffer, content.byteOffset, content.byteLength);
+    await storeContents(sequelize, readingId, segment, [{ position, rows: count, content: bytes }], tx);
+  }
+}
+
 /**
  * One column as it is stored: its segments in order.
  *

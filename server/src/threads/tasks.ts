@@ -8,6 +8,7 @@ import { compareFits } from './compare-fits';
 import { fitPenaltyPath } from './fit-path';
 import { freezeVersion } from './freeze-version';
 import { hashPassword, verifyPassword } from './passwords';
+import { hideStored } from './hide-column';
 import { prepareSample } from './prepare-sample';
 import { profileStored } from './profile-stored';
 import { qualityColumn } from './quality-column';
@@ -30,6 +31,7 @@ export const tasks = {
   'password.verify': verifyPassword,
   'sample.balance': balanceColumn,
   'sample.code': codeSegment,
+  'sample.hide': hideStored,
   'sample.prepare': prepareSample,
   'sample.profile': profileStored,
   'sample.quality': qualityColumn,

@@ -14,8 +14,10 @@ import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
 import { balanceOf, storeBalance } from './balance';
 import { carryOut } from './carry-out';
+import { profilesOf } from './columns-of';
 import { type FoundDraft, findDraft, presentDraft } from './draft';
 import { findSample } from './find-sample';
+import { hideIdentifiers, identifiersInClear, neededInClear, storeHidden } from './hide-identifiers';
 import { startReport } from './quality/start-report';
 
 /**
@@ -35,7 +37,9 @@ export async function confirmDraft(
   if (draft.revision !== revision)
     throw new Problem(412, 'stale', 'The draft was saved since you read it. Look at it as it is now, then confirm.');
   const { problems } = await presentDraft(context, draft, tx);
-  if (problems.length > 0) throw invalid(problems);
+  const profiles = sample.readingId === null ? [] : await profilesOf(context.sequelize, sample.readingId, tx);
+  const clear = await neededInClear(context.sequelize, sample.id, identifiersInClear(draft.content.columns, profiles), tx);
+  if (problems.length + clear.length > 0) throw invalid([...problems, ...clear]);
   if (sample.busy) throw conflict('busy', 'Something runs on this sample already. Wait for it or cancel it.');
   return startRun(context, tx, confirmSampleJob, {
     payload: { sampleId: sample.id, revision },
@@ -58,7 +62,10 @@ export interface ConfirmingRun {
   finish(work: (tx: Transaction) => Promise<{ definitionId: string; number: number }>): Promise<void>;
 }
 
-/** Carries out the draft on every row and keeps it, with its counts and who is in which partition, as an immutable definition. */
+/**
+ * Carries out the draft on every row and keeps it, with its counts and who is in which partition, as an immutable definition. Its identifiers
+ * that were in clear are kept as keyed hashes from then on.
+ */
 export async function confirmDefinition(payload: { sampleId: string; revision: number }, run: ConfirmingRun): Promise<void> {
   const { context } = run;
   const row = await Sample.findByPk(payload.sampleId, { rejectOnEmpty: true });
@@ -80,10 +87,17 @@ export async function confirmDefinition(payload: { sampleId: string; revision: n
     signal: run.signal,
     onColumn: (done, count) => run.progress('comparing the partitions', 0.4 + (0.4 * done) / count),
   });
-  run.progress('storing', 0.8);
+  run.progress('hashing identifiers', 0.8);
+  const hidden = await hideIdentifiers(context, sample, content.columns, run.signal);
+  run.progress('storing', 0.9);
   const id = randomUUID();
   await run.finish(async (tx) => {
     await rows(context.sequelize, 'SELECT id FROM samples WHERE id = $1 FOR UPDATE', [sample.id], tx);
+    // A definition that was confirmed since this run was started may read a column that is to be hidden.
+    const names = hidden.map(({ profile }) => profile.column);
+    const needed = await neededInClear(context.sequelize, sample.id, names, tx);
+    if (needed.length > 0) throw new Problem(422, 'not-confirmed', needed[0].message, { problems: needed });
+    if (sample.readingId !== null) await storeHidden(context.sequelize, tx, sample.readingId, hidden);
     const [{ number }] = await rows<{ number: number }>(
       context.sequelize,
       'SELECT coalesce(max(number), 0)::int + 1 AS number FROM sample_definitions WHERE sample_id = $1',
@@ -122,6 +136,7 @@ export async function confirmDefinition(payload: { sampleId: string; revision: n
         development: result.development.rows,
         holdOut: result.holdOut.rows,
         outOfTime: result.outOfTime.rows,
+        ...(names.length === 0 ? {} : { hashed: names }),
       },
     });
     // Nobody waits for the report, so it is a run of its own.

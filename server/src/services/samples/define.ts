@@ -34,6 +34,9 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
   const profiles = new Map(sample.profiles.map((profile) => [profile.column, profile]));
   const holder = (role: ColumnRole): DefinedColumn | undefined => draft.columns.find((column) => column.role === role);
 
+  // Kept as keyed hashes from the confirmation on: no rule can rest on their values.
+  const identifiers = new Set(draft.columns.filter(({ role }) => role === 'identifier').map(({ column }) => column));
+
   checkColumns(draft, profiles, say);
   const outcome = holder('outcome');
   if (!outcome)
@@ -49,7 +52,7 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
     });
   if (draft.declined && draft.declined.values.length === 0)
     say('no-declined', 'Say which values of the decision mean declined, or treat nobody as declined.', { section: 'outcome' });
-  draft.exclusions.forEach((rule, place) => checkRule(rule, place, profiles, say));
+  draft.exclusions.forEach((rule, place) => checkRule(rule, place, profiles, identifiers, say));
   const partition = partitionOf(draft, holder, say);
   if (problems.length > 0 || !outcome || !partition) return { content: null, problems };
 
@@ -207,7 +210,13 @@ function checkOutcome(draft: DraftContent, profile: ColumnProfile | undefined, s
   }
 }
 
-function checkRule(rule: ExclusionRule, place: number, profiles: ReadonlyMap<string, ColumnProfile>, say: Say): void {
+function checkRule(
+  rule: ExclusionRule,
+  place: number,
+  profiles: ReadonlyMap<string, ColumnProfile>,
+  identifiers: ReadonlySet<string>,
+  say: Say,
+): void {
   const where = { section: 'exclusions', rule: place + 1 };
   const name = rule.reason.trim() === '' ? `Exclusion ${place + 1}` : `“${rule.reason.trim()}”`;
   if (rule.reason.trim() === '')
@@ -231,8 +240,10 @@ function checkRule(rule: ExclusionRule, place: number, profiles: ReadonlyMap<str
       say('not-comparable', `${name} compares the numbers of ${column} with a date.`, at);
     if (profile.kind === 'date' && limits.some((one) => typeof one !== 'string'))
       say('not-comparable', `${name} compares the dates of ${column} with a number.`, at);
-    if (profile.hashed && (test.in || test.notIn))
+    if ((profile.hashed || identifiers.has(column)) && (test.in || test.notIn))
       say('kept-as-hashes', `${name} lists values of ${column}, which are kept as keyed hashes.`, at);
+    else if (!profile.hashed && identifiers.has(column) && limits.length > 0)
+      say('kept-as-hashes', `${name} compares ${column} with a limit, and an identifier is kept as keyed hashes.`, at);
   });
 }
 

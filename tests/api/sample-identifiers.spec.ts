@@ -1,0 +1,208 @@
+import type { ColumnProfile, ColumnRole } from '@tallystone/contracts/samples/columns';
+import type { DraftContent } from '@tallystone/contracts/samples/definition';
+import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { deriveKey } from '../../server/src/config/keys';
+import { hashText } from '../../server/src/profiling/personal';
+import { prepare } from '../../server/src/replay/prepare';
+import { loadPrepared } from '../../server/src/services/samples/definitions';
+import { openSample } from '../../server/src/storage/columnStore';
+import { inflateSegment } from '../../server/src/storage/segmentCoding';
+import { readColumns, sourceOfFile } from '../../server/src/reading/index';
+import { IntakeServer, type Visitor } from '../support/intake';
+
+/** A column of which nothing but a person can say that it identifies applicants. */
+let server: IntakeServer;
+let modeller: Visitor;
+let modelId: string;
+
+beforeAll(async () => {
+  server = await IntakeServer.start();
+  modeller = await server.signIn('marian', 'modeller');
+  modelId = await modeller.model();
+});
+afterAll(() => server.stop());
+
+const rowCount = 600;
+/** Members have two applications each, and the heading says nothing. */
+const member = (row: number): string => `MARSH-${String(4000 + Math.floor(row / 2) * 7)}`;
+/** Short whole numbers: an amount, as far as values can tell. */
+const folder = (row: number): string => String(20_000 + row * 3);
+function applicants(): string {
+  const lines = ['member,folder,income,home,bad'];
+  for (let row = 0; row < rowCount; row++)
+    lines.push(
+      [
+        member(row),
+        row % 50 === 0 ? '' : folder(row),
+        900 + ((row * 37) % 5000),
+        row % 3 ? 'rent' : 'owner',
+        row % 9 === 0 ? 1 : 0,
+      ].join(','),
+    );
+  return `${lines.join('\n')}\n`;
+}
+
+async function* inOnePiece(text: string): AsyncGenerator<Buffer> {
+  yield Buffer.from(text);
+}
+
+const columnsAs = (content: DraftContent, roles: Record<string, ColumnRole>): DraftContent => ({
+  ...content,
+  columns: content.columns.map((column) => ({ ...column, role: roles[column.column] ?? column.role })),
+});
+
+async function confirm(path: string, change: (content: DraftContent) => DraftContent) {
+  const { body, headers } = await modeller.get(`${path}/draft`).expect(200);
+  const saved = await modeller
+    .put(`${path}/draft`)
+    .set('If-Match', headers.etag)
+    .send(change(body.content as DraftContent))
+    .expect(200);
+  return modeller.post(`${path}/definitions`).send({ revision: saved.body.revision as number });
+}
+
+/** Every byte that the column store has of a sample, inflated, and its profiles as they are stored. */
+async function stored(sampleId: string): Promise<string> {
+  const [segments] = await server.context.sequelize.query(
+    `SELECT c.content FROM column_segments c JOIN sample_readings r ON r.id = c.reading_id WHERE r.sample_id = '${sampleId}'`,
+  );
+  const [profiles] = await server.context.sequelize.query(
+    `SELECT c.profile FROM sample_columns c JOIN sample_readings r ON r.id = c.reading_id WHERE r.sample_id = '${sampleId}'`,
+  );
+  const inflated = (segments as { content: Buffer }[]).map(({ content }) => inflateSegment(content).toString('latin1'));
+  return [...inflated, JSON.stringify(profiles)].join('\n');
+}
+
+async function profileOf(path: string, column: string): Promise<ColumnProfile> {
+  const { body } = await modeller.get(`${path}/columns`).expect(200);
+  const found = (body.columns as ColumnProfile[]).find((one) => one.column === column);
+  if (!found) throw new Error(`No column ${column}`);
+  return found;
+}
+
+describe('a column that a person says is an identifier', () => {
+  it('is kept as keyed hashes from the confirmation on, and shown nowhere', async () => {
+    const { path, id } = await modeller.sample(modelId, applicants());
+    const before = await profileOf(path, 'member');
+    expect(before).toMatchObject({ hashed: false, distinct: 300, text: { shortest: 10, longest: 10 } });
+    expect(before.mostFrequent).not.toEqual([]);
+    expect((await profileOf(path, 'folder')).numeric).not.toBeNull();
+    // What is looked for afterwards is there now.
+    expect(await stored(id)).toContain('MARSH-');
+
+    const started = await confirm(path, (content) => columnsAs(content, { member: 'identifier', folder: 'identifier' }));
+    expect(started.status).toBe(202);
+    const run = await modeller.ended(started.body.id as string);
+    expect(run).toMatchObject({ state: 'succeeded' });
+
+    const text = await stored(id);
+    expect(text).not.toContain('MARSH');
+    const source = await openSample(server.context.sequelize, id, ['member', 'folder', 'income']);
+    const key = deriveKey(server.context.config.keys.identifiers, 'sample columns');
+    const cellsOf = (name: string): string[] => {
+      const column = source.column(name);
+      if (column?.kind !== 'texts') throw new Error('Texts are expected');
+      return Array.from(column.codes, (code) => column.texts[code]);
+    };
+    // As if they had been read so; a missing value stays missing.
+    const all = Array.from({ length: rowCount }, (_, row) => row);
+    expect(cellsOf('member')).toEqual(all.map((row) => hashText(key, member(row))));
+    expect(cellsOf('folder')).toEqual(all.map((row) => (row % 50 === 0 ? '' : hashText(key, folder(row)))));
+    expect(cellsOf('income')[1]).toBe('937');
+
+    const after = await profileOf(path, 'member');
+    expect(after).toMatchObject({
+      hashed: true,
+      kind: 'categorical',
+      distinct: 300,
+      missing: 0,
+      mostFrequent: [],
+      valuesComplete: false,
+      numeric: null,
+      text: { shortest: 10, longest: 10 },
+    });
+    expect(after.flags.map(({ code }) => code)).toContain('looks-like-identifier');
+    expect(await profileOf(path, 'folder')).toMatchObject({
+      hashed: true,
+      distinct: 588,
+      missing: 12,
+      numeric: null,
+      specialSuspects: [],
+      mostFrequent: [],
+    });
+
+    // The definition, its report, the preview: nothing shows a cell of them.
+    const { definitionId } = run.result as { definitionId: string };
+    for (let wait = 0; wait < 200 && (await modeller.get(`${path}/quality`)).body.report === null; wait++)
+      await new Promise((resolve) => setTimeout(resolve, 50));
+    const { body: quality } = await modeller.get(`${path}/quality`).expect(200);
+    expect(quality.report).not.toBeNull();
+    const shown = [quality, (await modeller.get(`${path}/quality/column?column=folder`)).body];
+    for (const tail of ['/columns', '/draft', `/definitions/${definitionId}`])
+      shown.push((await modeller.get(path + tail).expect(200)).body);
+    expect(JSON.stringify(shown)).not.toMatch(/MARSH|\b2\d{4}\b/);
+    await modeller.post(`${path}/preview`).send({}).expect(403);
+
+    // The record says which, and the same definition comes from the file itself.
+    const [events] = await server.context.sequelize.query(
+      `SELECT after FROM record WHERE action = 'sample.defined' AND entity_id = '${id}'`,
+    );
+    expect(events).toMatchObject([{ after: { hashed: ['member', 'folder'] } }]);
+    const { body: definition } = await modeller.get(`${path}/definitions/${definitionId}`).expect(200);
+    const limits = { mostRows: 10_000, mostColumns: 10 };
+    const file = await readColumns(inOnePiece(applicants()), definition.content.data, limits);
+    const fromFile = prepare(definition.content, sourceOfFile(file));
+    const kept = await loadPrepared(server.context.sequelize, definitionId);
+    expect(kept.counts).toEqual(fromFile.counts);
+    expect(Buffer.from(kept.partition).equals(Buffer.from(fromFile.partition))).toBe(true);
+    expect(Buffer.from(kept.outcome).equals(Buffer.from(fromFile.outcome))).toBe(true);
+
+    // A second definition finds them hashed: they cannot become anything else, and confirming it again changes nothing.
+    const other = await confirm(path, (content) => columnsAs(content, { member: 'characteristic' }));
+    expect(other.status).toBe(422);
+    expect(other.body.problems).toMatchObject([{ code: 'kept-as-hashes', where: { column: 'member' } }]);
+    const again = await confirm(path, (content) => columnsAs(content, { member: 'identifier' }));
+    expect(await modeller.ended(again.body.id as string)).toMatchObject({ state: 'succeeded', result: { number: 2 } });
+    expect(cellsOf('member')[5]).toBe(hashText(key, member(5)));
+  });
+
+  it('stays in clear where an earlier definition reads it, which is said', async () => {
+    const { path, id } = await modeller.sample(modelId, applicants());
+    const first = await confirm(path, (content) => columnsAs(content, { member: 'not used', folder: 'characteristic' }));
+    expect(await modeller.ended(first.body.id as string)).toMatchObject({ state: 'succeeded' });
+    const second = await confirm(path, (content) => columnsAs(content, { folder: 'identifier' }));
+    expect(second.status).toBe(422);
+    expect(second.body.problems).toMatchObject([
+      {
+        code: 'needed-in-clear',
+        message: expect.stringContaining('folder cannot become an identifier: definition 1 of this sample reads its values'),
+        where: { section: 'columns', column: 'folder' },
+      },
+    ]);
+    // One that no definition has read can.
+    const third = await confirm(path, (content) => columnsAs(content, { folder: 'characteristic', member: 'identifier' }));
+    expect(await modeller.ended(third.body.id as string)).toMatchObject({ state: 'succeeded', result: { number: 2 } });
+    expect(await stored(id)).not.toContain('MARSH');
+    expect((await profileOf(path, 'folder')).hashed).toBe(false);
+  });
+
+  it('is tested by no rule of its values', async () => {
+    const { path } = await modeller.sample(modelId, applicants());
+    const tests = [
+      { column: 'member', in: [member(3)] },
+      { column: 'folder', below: 20_100 },
+      { column: 'folder', missing: true },
+    ];
+    const refused = await confirm(path, (content) => ({
+      ...columnsAs(content, { member: 'identifier', folder: 'identifier' }),
+      exclusions: tests.map((test, place) => ({ reason: `rule ${place + 1}`, combine: 'all', tests: [test] })),
+    }));
+    expect(refused.status).toBe(422);
+    expect(refused.body.problems).toMatchObject([
+      { code: 'kept-as-hashes', where: { rule: 1, column: 'member' } },
+      { code: 'kept-as-hashes', where: { rule: 2, column: 'folder' } },
+    ]);
+    const { body: columns } = await modeller.get(`${path}/columns`).expect(200);
+    expect((columns.columns as ColumnProfile[]).every(({ hashed }) => !hashed)).toBe(true);
+  });
+});
