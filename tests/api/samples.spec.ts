@@ -1,9 +1,10 @@
+import { inflateRawSync } from 'node:zlib';
 import type { DraftContent } from '@tallystone/contracts/samples/definition';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { prepare } from '../../server/src/replay/prepare';
 import { loadPrepared } from '../../server/src/services/samples/definitions';
 import { openSample } from '../../server/src/storage/columnStore';
-import { readRawFile } from '../../server/src/storage/rawFiles';
+import { openChunk, readRawFile } from '../../server/src/storage/rawFiles';
 import { IntakeServer, type Visitor } from '../support/intake';
 
 let server: IntakeServer;
@@ -43,6 +44,17 @@ function applicants(rows = 600): string {
     lines.push(cells.join(','));
   }
   return `${lines.join('\n')}\n`;
+}
+
+/** Whatever inflates (RFC 1951) of the first places on at which a deflated stream could begin. */
+function inflatedFromAnywhere(bytes: Buffer): string[] {
+  return Array.from({ length: 40 }, (_, from) => {
+    try {
+      return inflateRawSync(bytes.subarray(from)).toString('latin1');
+    } catch {
+      return '';
+    }
+  });
 }
 
 describe('a sample from its file to its definition', () => {
@@ -93,8 +105,14 @@ describe('a sample from its file to its definition', () => {
     expect(ids.texts.every((text) => /^[\w-]{22}$/.test(text))).toBe(true);
     const { body } = await modeller.get(`${path}/columns`).expect(200);
     expect(body.columns[0]).toMatchObject({ hashed: true, mostFrequent: [], distinct: 600 });
-    const [chunks] = await server.context.sequelize.query('SELECT content FROM raw_chunks');
-    expect((chunks as { content: Buffer }[]).some((chunk) => chunk.content.includes('SM-000'))).toBe(false);
+    // The chunks are deflated before they are encrypted: without the key nothing of the file inflates from what is stored, with another none opens.
+    const [chunks] = await server.context.sequelize.query(
+      `SELECT c.file_id AS "fileId", c.sequence, c.content FROM raw_chunks c JOIN samples s ON s.raw_file_id = c.file_id WHERE s.id = '${sampleId}'`,
+    );
+    expect(chunks).toHaveLength(1);
+    const [{ fileId, sequence, content: sealed }] = chunks as { fileId: string; sequence: number; content: Buffer }[];
+    expect(inflatedFromAnywhere(sealed).filter((one) => one.includes('SM-000'))).toEqual([]);
+    await expect(openChunk(server.context.config.keys.identifiers.subarray(0, 32), fileId, sequence, sealed)).rejects.toThrow();
     const parts: Buffer[] = [];
     for await (const bytes of readRawFile(
       server.context.sequelize,
