@@ -206,3 +206,50 @@ describe('a column that a person says is an identifier', () => {
     expect((columns.columns as ColumnProfile[]).every(({ hashed }) => !hashed)).toBe(true);
   });
 });
+
+describe('personal data among the values of a column', () => {
+  it('is warned of wherever it stands in the file, and the warning can be answered', async () => {
+    // More rows than one segment has: the first says nothing of the address in the second.
+    const rows = 70_000;
+    const lines = ['income,note,paid_with,bad'];
+    for (let row = 0; row < rows; row++) {
+      const note = row === 69_000 ? 'wrote from ada@saltmarsh.example' : row % 2 ? 'moved house' : 'nothing';
+      lines.push(
+        `${900 + ((row * 37) % 5000)},${note},${row % 2 ? '4111111111111111' : '5500000000000004'},${row % 9 === 0 ? 1 : 0}`,
+      );
+    }
+    const { path } = await modeller.sample(modelId, `${lines.join('\n')}\n`);
+    const note = await profileOf(path, 'note');
+    expect(note).toMatchObject({ hashed: false, mostFrequent: [], valuesComplete: false, suggestedRole: 'not used' });
+    const flag = note.flags.find(({ code }) => code === 'holds-personal-data');
+    expect(flag).toMatchObject({ weight: 'look', finding: expect.stringContaining('e-mail addresses in 1 row (RFC 5322') });
+    const cards = await profileOf(path, 'paid_with');
+    expect(cards.flags).toMatchObject([
+      { code: 'holds-personal-data', finding: expect.stringContaining('payment cards in 70 000 rows (ISO/IEC 7812') },
+    ]);
+    expect(cards).toMatchObject({ numeric: null, specialSuspects: [] });
+    expect((await profileOf(path, 'income')).flags).toEqual([]);
+    const { body: columns } = await modeller.get(`${path}/columns`).expect(200);
+    expect(JSON.stringify(columns)).not.toMatch(/ada@|moved house|4111|5500/);
+
+    // A warning is no block: the column can be used, and the report takes an answer.
+    const started = await confirm(path, (content) => columnsAs(content, { note: 'characteristic' }));
+    expect(await modeller.ended(started.body.id as string)).toMatchObject({ state: 'succeeded' });
+    for (let wait = 0; wait < 400 && (await modeller.get(`${path}/quality`)).body.report === null; wait++)
+      await new Promise((resolve) => setTimeout(resolve, 50));
+    const { body: quality } = await modeller.get(`${path}/quality`).expect(200);
+    expect(JSON.stringify(quality)).not.toMatch(/ada@|4111|5500/);
+    expect(JSON.stringify((await modeller.get(`${path}/quality/column?column=note`).expect(200)).body)).not.toMatch(
+      /ada@|moved house/,
+    );
+    const answer = { column: 'note', code: 'holds-personal-data', answer: 'accepted', reason: 'An address of the office' };
+    const { body: answered } = await modeller
+      .post(`${path}/quality/answers`)
+      .send(answer)
+      .expect((response) => expect(response.status).toBeLessThan(300));
+    const held = answered.report.flags.find(
+      (one: { column: string; code: string }) => one.column === 'note' && one.code === 'holds-personal-data',
+    );
+    expect(held).toMatchObject({ answer: { answer: 'accepted' } });
+  });
+});

@@ -31,6 +31,7 @@ export const columnFlags = [
   'looks-like-email',
   'looks-like-name',
   'looks-like-protected',
+  'holds-personal-data',
   'repeated-identifiers',
   'unreadable-numbers',
   'numbers-as-text',

@@ -67,6 +67,7 @@ export function profileHashes(
     name,
     position,
     personal,
+    personalValues: [],
     rows,
     missingTokens: [...missing].map(([value, count]) => ({ value, count })),
     kind: 'categorical',

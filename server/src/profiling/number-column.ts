@@ -7,6 +7,7 @@ import type { UnpackedSegment } from '../storage/packedSegment';
 import type { CountedNumbers } from './counted-numbers';
 import { type Counted, judgeNumbers } from './kind';
 import { type OutcomeCodes, leakageOfNumbers } from './leakage';
+import { PersonalValues } from './personal-values';
 import { describeColumn, mostListed } from './profile-column';
 import { type SortedCounts, sortCounts } from './sorted-counts';
 
@@ -49,10 +50,14 @@ export function profileNumbers(
   const total = kept.counts.reduce((sum, one) => sum + one, 0) + others.reduce((sum, { count }) => sum + count, 0);
   const judged = judgeNumbers(total, notNumbers, reader);
   if (judged === null) return null;
+  // Packed numbers have fewer digits than any of what is looked for.
+  const values = new PersonalValues();
+  for (const { text, count } of others) values.add(text, count);
   const profile = describeColumn({
     name,
     position,
     personal: null,
+    personalValues: values.found(),
     rows: joined.rows,
     missingTokens,
     kind: 'numeric',

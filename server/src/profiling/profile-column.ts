@@ -5,6 +5,7 @@ import type { TextColumn } from '../replay/source';
 import { type CountedNumbers, countNumbers, withoutPlaces } from './counted-numbers';
 import { type Counted, isIsoDate, judgeKind, thin } from './kind';
 import type { Personal } from './personal';
+import { PersonalValues, type PersonalValuesFound } from './personal-values';
 import { suspectSpecials } from './specials';
 import { suggestRole } from './suggest-role';
 
@@ -37,11 +38,14 @@ export function profileColumn(
     else all.push({ text, count });
   });
   const reader = numberReader(choices);
+  const values = new PersonalValues();
+  if (!personal) for (const { text, count } of all) values.add(text, count);
   const judged = personal ? { kind: 'categorical' as const, flags: [] } : judgeKind(all, reader);
   return describeColumn({
     name,
     position,
     personal,
+    personalValues: values.found(),
     rows: column.codes.length,
     missingTokens,
     kind: judged.kind,
@@ -59,6 +63,8 @@ export interface ColumnFacts {
   readonly name: string;
   readonly position: number;
   readonly personal: Personal | null;
+  /** Of a column that is not hashed: what its values seem to hold. */
+  readonly personalValues: readonly PersonalValuesFound[];
   readonly rows: number;
   /** In any order. */
   readonly missingTokens: readonly { readonly value: string; readonly count: number }[];
@@ -75,12 +81,17 @@ export interface ColumnFacts {
 }
 
 export function describeColumn(facts: ColumnFacts): ColumnProfile {
-  const { name, position, personal, rows, missingTokens, kind, distinct, mostFrequent, numbers } = facts;
+  const { name, position, personal, personalValues, rows, missingTokens, kind, distinct, mostFrequent, numbers } = facts;
+  const hidden = personal !== null || personalValues.length > 0;
   const missing = missingTokens.reduce((total, { count }) => total + count, 0);
-  const codes = numbers ? suspectSpecials(numbers) : null;
+  const amountsHidden = personalValues.some(({ asNumbers }) => asNumbers);
+  const codes = numbers && !amountsHidden ? suspectSpecials(numbers) : null;
   const specialSuspects = codes?.suspects ?? [];
   const amounts = numbers && codes ? withoutPlaces(numbers, codes.places) : null;
-  const flags: ColumnFlag[] = [...shape(rows, missing, mostFrequent[0], distinct, kind), ...facts.kindFlags];
+  const flags: ColumnFlag[] = [
+    ...shape(rows, missing, mostFrequent[0], distinct, kind, hidden),
+    ...facts.kindFlags.map((flag) => (personalValues.length > 0 ? withoutExamples(flag) : flag)),
+  ];
   if (specialSuspects.length > 0) {
     const listed = specialSuspects.map(({ value, count }) => `${value.replace('-', '\u2212')} (${thin(count)})`).join(', ');
     flags.push({
@@ -90,6 +101,7 @@ export function describeColumn(facts: ColumnFacts): ColumnProfile {
     });
   }
   if (personal) flags.push(...personalFlags(personal, rows - missing, distinct));
+  if (personalValues.length > 0) flags.push(personalValuesFlag(personalValues));
   const suggestion = suggestRole({ name, kind, rows, missing, distinct, personal, flags });
   if (suggestion.protectedFinding)
     flags.push({ code: 'looks-like-protected', weight: 'look', finding: suggestion.protectedFinding });
@@ -103,8 +115,10 @@ export function describeColumn(facts: ColumnFacts): ColumnProfile {
     // Of one count by their text: the order must not depend on how a segment happens to be stored.
     missingTokens: [...missingTokens].sort((a, b) => b.count - a.count || (a.value < b.value ? -1 : 1)),
     specialSuspects,
-    mostFrequent: personal ? [] : mostFrequent.map(({ text, count }) => ({ value: text, count })),
-    valuesComplete: !personal && distinct <= mostListed,
+    mostFrequent: mostFrequent
+      .filter(({ text }) => !hidden || (numbers !== null && !amountsHidden && plainAmount.test(text)))
+      .map(({ text, count }) => ({ value: text, count })),
+    valuesComplete: !hidden && distinct <= mostListed,
     numeric: amounts && amounts.length > 0 ? describeNumbers(amounts) : null,
     date: facts.date,
     text: facts.text,
@@ -136,19 +150,21 @@ function shape(
   first: Counted | undefined,
   distinct: number,
   kind: ColumnProfile['kind'],
+  hidden: boolean,
 ): ColumnFlag[] {
   const known = rows - missing;
   if (first === undefined) return [{ code: 'all-missing', weight: 'stop', finding: `All ${thin(rows)} values are missing.` }];
   const flags: ColumnFlag[] = [];
+  const shown = hidden ? 'one and the same' : JSON.stringify(first.text.slice(0, 60));
   if (distinct === 1) {
     const rest = missing > 0 ? ` where it is not missing` : '';
     const weight = missing > 0 ? ('look' as const) : ('stop' as const);
-    flags.push({ code: 'constant', weight, finding: `Always ${JSON.stringify(first.text.slice(0, 60))}${rest}.` });
+    flags.push({ code: 'constant', weight, finding: `Always ${shown}${rest}.` });
   } else if (first.count >= 0.99 * known) {
     flags.push({
       code: 'near-constant',
       weight: 'look',
-      finding: `${share(first.count, known)} of the values are ${JSON.stringify(first.text.slice(0, 60))}.`,
+      finding: `${share(first.count, known)} of the values are ${shown}.`,
     });
   }
   if (missing >= 0.5 * rows)
@@ -175,6 +191,25 @@ function personalFlags(personal: Personal, known: number, distinct: number): Col
   }
   return flags;
 }
+
+/** A warning that somebody answers: a form can fit by chance, and nothing is refused for it. */
+function personalValuesFlag(found: readonly PersonalValuesFound[]): ColumnFlag {
+  const listed = found.map(({ kind, standard, rows }) => `${kind} in ${thin(rows)} row${rows === 1 ? '' : 's'} (${standard})`);
+  const finding = `Seems to hold ${listed.join('; ')}. Its values are not listed; take it out of the file, make it an identifier, or do not use it, if that is so.`;
+  return { code: 'holds-personal-data', weight: 'look', finding };
+}
+
+/** Listed of a numeric column even where other texts in it are personal data. */
+const plainAmount = /^-?[\d.,]+$/;
+
+const unexampled: Partial<Record<ColumnFlag['code'], string>> = {
+  'doubtful-dates': 'Some of its values are no dates, or doubtful ones.',
+  'numbers-as-text': 'Some of its values are numbers, or written like numbers, and others are not.',
+  'unreadable-numbers': 'Some of its values are no numbers.',
+};
+
+/** The finding of its kind without the values that it quotes. */
+const withoutExamples = (flag: ColumnFlag): ColumnFlag => ({ ...flag, finding: unexampled[flag.code] ?? flag.finding });
 
 /** Mean and deviation in one pass over distinct values (weighted Welford 1962); quantiles are type 7 of Hyndman and Fan 1996. */
 function describeNumbers({ values, counts, length }: CountedNumbers): NonNullable<ColumnProfile['numeric']> {

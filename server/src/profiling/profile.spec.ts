@@ -182,3 +182,34 @@ describe('leakage and duplicates', () => {
     expect(rows.count()).toBe(2);
   });
 });
+
+describe('personal data in the values of a column', () => {
+  it('is warned of wherever it stands, with its standard, and no value is listed', () => {
+    const notes = many(3000, (k) => (k === 2900 ? 'asked ada@saltmarsh.example first' : ['paid late', 'moved', 'nothing'][k % 3]));
+    const found = profile(notes, 'notes');
+    expect(found).toMatchObject({ mostFrequent: [], valuesComplete: false, distinct: 4, hashed: false, suggestedRole: 'not used' });
+    expect(found.flags).toContainEqual({
+      code: 'holds-personal-data',
+      weight: 'look',
+      finding:
+        'Seems to hold e-mail addresses in 1 row (RFC 5322, section 3.4.1). Its values are not listed; take it out of the file, make it an identifier, or do not use it, if that is so.',
+    });
+    expect(JSON.stringify(found)).not.toMatch(/saltmarsh\.example|moved/);
+  });
+
+  it('lists nothing of a column of cards, which are numbers too', () => {
+    const cards = ['4111111111111111', '5500000000000004', '4012888888881881'];
+    const found = profile(many(90, (k) => cards[k % 3]), 'paid_with');
+    expect(found).toMatchObject({ kind: 'numeric', numeric: null, specialSuspects: [], mostFrequent: [] });
+    expect(found.flags.map(({ code }) => code)).toEqual(['holds-personal-data']);
+    expect(JSON.stringify(found)).not.toMatch(/\d{13}/);
+    expect(JSON.stringify(profile(many(90, () => cards[0])))).not.toContain('4111');
+  });
+
+  it('leaves the amounts of a column with a stray address, and quotes none of its texts', () => {
+    const found = profile(many(400, (k) => (k === 7 ? 'ask bob@saltmarsh.example' : String(900 + k))), 'income');
+    expect(found).toMatchObject({ kind: 'numeric', numeric: { smallest: 900, largest: 1299 }, valuesComplete: false, suggestedRole: 'characteristic' });
+    expect(found.flags.map(({ code }) => code).sort()).toEqual(['holds-personal-data', 'unreadable-numbers']);
+    expect(JSON.stringify(found)).not.toContain('bob@');
+  });
+});

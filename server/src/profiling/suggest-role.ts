@@ -106,6 +106,8 @@ export function suggestRole(evidence: RoleEvidence): RoleSuggestion {
     if (fits.kinds !== null && !fits.kinds.includes(evidence.kind)) continue;
     return { ...common, role, reason };
   }
+  const held = evidence.flags.find(({ code }) => code === 'holds-personal-data');
+  if (held && evidence.kind === 'categorical') return { ...common, role: 'not used', reason: held.finding };
   if (evidence.kind === 'date') return { ...common, role: 'not used', reason: 'A date is no characteristic as it stands.' };
   return { ...common, role: 'characteristic', reason: 'Nothing speaks against it.' };
 }

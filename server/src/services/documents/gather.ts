@@ -286,7 +286,7 @@ function windowsOf(sample: Numbered<SampleEvidence>, { partition }: Specificatio
 
 function qualityOf(name: string, kind: string, profile: ColumnProfile, { definition, dictionary, report }: Pick<SampleEvidence, 'definition' | 'dictionary' | 'report'>): NonNullable<DocumentInput['quality']>['columns'][number] {
   const defined = definition.columns.find(({ column }) => column === name);
-  const [most] = profile.hashed ? [] : profile.mostFrequent;
+  const [most] = profile.mostFrequent;
   const rowsOf = (value: string | number): number => profile.mostFrequent.find((entry) => entry.value === String(value))?.count ?? 0;
   const treatments = dictionary?.find(({ column }) => column === name)?.treatments ?? [];
   const treatmentOf = (value: string | number): string | null => treatments.find(({ code }) => code === String(value))?.treatment || null;

@@ -159,6 +159,9 @@ function countMonths({ of, names }: RowMonths, outcome: Uint8Array): QualityMont
 
 function neededOf(profile: ColumnProfile, { kind }: DefinedColumn): Needed {
   if (profile.hashed || kind === 'date') return 'presence';
+  const held = profile.flags.some(({ code }) => code === 'holds-personal-data');
+  // Texts of such a column are shown nowhere, and its numbers only where they are no card or telephone numbers.
+  if (held && (kind !== 'numeric' || profile.numeric === null)) return 'presence';
   if (kind === 'numeric') return 'numbers';
   return profile.distinct <= mostTexts ? 'texts' : 'presence';
 }

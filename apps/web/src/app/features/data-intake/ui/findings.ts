@@ -58,6 +58,7 @@ export function rangeOf(profile: ColumnProfile): string {
 export function mostFrequentOf(profile: ColumnProfile): string {
   const [first] = profile.mostFrequent;
   if (profile.hashed) return 'kept as hashes';
+  if (!first && profile.flags.some(({ code }) => code === 'holds-personal-data')) return 'not listed';
   return first ? `${profile.kind === 'numeric' ? written(first.value) : first.value} (${share(first.count / Math.max(1, profile.rows - profile.missing), 0)})` : '';
 }
 
@@ -87,6 +88,7 @@ const flagWords: Partial<Record<ColumnProfile['flags'][number]['code'], string>>
   'looks-like-email': 'e-mail',
   'looks-like-name': 'names',
   'looks-like-protected': 'protected?',
+  'holds-personal-data': 'personal data',
   'possible-leakage': 'leakage?',
   'repeated-identifiers': 'repeated',
   'unreadable-numbers': 'no numbers',

@@ -24,6 +24,7 @@ const words: Partial<Record<QualityFlag['code'], string>> = {
   'looks-like-email': 'E-mail addresses',
   'looks-like-name': 'Names of people',
   'looks-like-protected': 'Protected?',
+  'holds-personal-data': 'Personal data in values',
   'repeated-identifiers': 'Repeated identifiers',
   'unreadable-numbers': 'Values that are no numbers',
   'numbers-as-text': 'Numbers as text',
