@@ -164,7 +164,7 @@ describe('a column that a person says is an identifier', () => {
     const again = await confirm(path, (content) => columnsAs(content, { member: 'identifier' }));
     expect(await modeller.ended(again.body.id as string)).toMatchObject({ state: 'succeeded', result: { number: 2 } });
     expect(cellsOf('member')[5]).toBe(hashText(key, member(5)));
-  });
+  }, 120_000);
 
   it('stays in clear where an earlier definition reads it, which is said', async () => {
     const { path, id } = await modeller.sample(modelId, applicants());
@@ -251,5 +251,5 @@ describe('personal data among the values of a column', () => {
       (one: { column: string; code: string }) => one.column === 'note' && one.code === 'holds-personal-data',
     );
     expect(held).toMatchObject({ answer: { answer: 'accepted' } });
-  });
+  }, 120_000);
 });
