@@ -65,7 +65,18 @@ describe('encodings', () => {
 
 describe('rows and headers', () => {
   it('names the first twenty ragged lines and their number', async () => {
-    const problems = await refused(file('a,b,c', 60, (row) => (row % 2 === 0 ? '1,2,3' : '1,2')));
+    const text = file('a,b,c', 60, (row) => (row % 2 === 0 ? '1,2,3' : '1,2'));
+    const { doubtful } = await preview(text);
+    expect(doubtful.count).toBe(30);
+    expect(doubtful.lines).toHaveLength(30);
+    expect(doubtful.lines[0]).toEqual({
+      line: 3,
+      record: 2,
+      text: '1,2',
+      clipped: false,
+      doubts: ['2 fields where the header has 3'],
+    });
+    const problems = await refused(text);
     expect(problems).toMatchObject([{ code: 'ragged', where: { line: 3, count: 30 } }]);
     expect(String(problems[0].where.lines).split(', ')).toHaveLength(20);
   });

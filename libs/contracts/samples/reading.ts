@@ -23,6 +23,23 @@ export const columnKinds = ['numeric', 'categorical', 'date'] as const;
 export const ColumnKind = z.enum(columnKinds);
 export type ColumnKind = z.infer<typeof ColumnKind>;
 
+/** Most doubtful lines that a preview lists; it counts them all. */
+export const mostDoubtfulLines = 50;
+
+/** A line of the file with what is wrong with it, as it stands there. */
+export const DoubtfulLine = z.object({
+  line: z.int(),
+  /** The data record that the line belongs to; null for a line of the header. */
+  record: z.int().nullable(),
+  /** Its beginning; what is no character of the encoding is written \xE9, \0 and the like. */
+  text: z.string(),
+  /** The line goes on. */
+  clipped: z.boolean(),
+  /** What is wrong with it, a few words each. */
+  doubts: z.array(z.string()),
+});
+export type DoubtfulLine = z.infer<typeof DoubtfulLine>;
+
 /** The first rows as they would be read, with everything that is doubtful, before anything is decided. */
 export const Preview = z
   .object({
@@ -41,6 +58,8 @@ export const Preview = z
         against: z.string().nullable(),
       }),
     ),
+    /** Lines of the part that was looked at in which something is wrong: the first of them, and how many there are. */
+    doubtful: z.object({ lines: z.array(DoubtfulLine).max(mostDoubtfulLines), count: z.int() }),
     /** The whole file has been looked at, or its beginning only. */
     looked: z.object({ records: z.int(), bytes: z.number(), whole: z.boolean() }),
     /** What must be settled before the file can be read. */

@@ -23,6 +23,7 @@ export {
 export {
   ReadingError,
   type ColumnSegment,
+  type Doubt,
   type FileFacts,
   type RawColumn,
   type ReadFile,

@@ -1,6 +1,6 @@
 import type { Encoding } from '@tallystone/contracts/specification/types';
 import { ENCODING_NAMES } from './encodings';
-import type { ReadingProblem, ReadingProblemCode } from './types';
+import type { Doubt, ReadingProblem, ReadingProblemCode } from './types';
 
 const MOST_LINES = 20;
 /** Problems of single cells are listed up to here, and counted beyond. */
@@ -24,6 +24,9 @@ export class ProblemBook {
   private readonly byLine = new Map<ReadingProblemCode, Lines>();
   private readonly cells = new Map<ReadingProblemCode, number>();
   private encoding: Encoding = 'utf-8';
+  private lastNotInEncoding = 0;
+
+  constructor(private readonly onDoubt?: (doubt: Doubt) => void) {}
 
   add(problem: ReadingProblem): void {
     this.any = true;
@@ -31,21 +34,22 @@ export class ProblemBook {
   }
 
   ragged(line: number, record: number, found: number, expected: number): void {
-    this.lineFault(
-      'ragged',
-      line,
-      record,
-      `line ${line} has ${found} field${found === 1 ? '' : 's'} where the header has ${expected}`,
-    );
+    const what = `${found} field${found === 1 ? '' : 's'} where the header has ${expected}`;
+    this.lineFault('ragged', line, record, `Line ${line} has ${what}.`);
+    this.onDoubt?.({ code: 'ragged', line, record, what });
   }
 
   strayQuote(line: number, record: number): void {
     this.lineFault('stray-quote', line, record, '');
+    this.onDoubt?.({ code: 'stray-quote', line, record, what: 'text after a closing quote' });
   }
 
   notInEncoding(line: number, encoding: Encoding): void {
     this.encoding = encoding;
-    if (this.byLine.get('not-in-encoding')?.lines.at(-1) !== line) this.lineFault('not-in-encoding', line, 0, '');
+    if (this.lastNotInEncoding === line) return;
+    this.lastNotInEncoding = line;
+    this.lineFault('not-in-encoding', line, 0, '');
+    this.onDoubt?.({ code: 'not-in-encoding', line, record: null, what: `not ${ENCODING_NAMES[encoding]}` });
   }
 
   unclosedQuote(line: number, record: number): void {
@@ -54,6 +58,7 @@ export class ProblemBook {
       message: `A quote is opened on line ${line} and never closed.`,
       where: { line, record },
     });
+    this.onDoubt?.({ code: 'unclosed-quote', line, record, what: 'a quote that is never closed' });
   }
 
   cellTooLarge(line: number, record: number, position: number, column: string | undefined, most: number): void {
@@ -92,7 +97,7 @@ export class ProblemBook {
 
   private say(code: ReadingProblemCode, lines: number[], count: number, detail: string): string {
     const others = count > 1 ? ` ${count} lines in all: ${lines.join(', ')}${count > lines.length ? ', …' : ''}.` : '';
-    if (code === 'ragged') return `${detail.charAt(0).toUpperCase()}${detail.slice(1)}.${others}`;
+    if (code === 'ragged') return `${detail}${others}`;
     if (code === 'stray-quote')
       return `Line ${lines[0]} has text after a closing quote; a quote inside a quoted field is doubled.${others}`;
     const offer = this.encoding === 'utf-8' ? '; read as Windows-1252?' : '.';
@@ -118,9 +123,10 @@ export class ProblemBook {
     const count = (this.cells.get(code) ?? 0) + 1;
     this.cells.set(code, count);
     this.any = true;
-    if (count > MOST_CELLS) return;
     const { column, ...where } = place;
     const name = column === undefined ? `column ${place.position}` : `column ${place.position} ("${column}")`;
+    this.onDoubt?.({ code, line: place.line, record: place.record, what: `${name} ${what}` });
+    if (count > MOST_CELLS) return;
     this.add({
       code,
       message: `The cell in line ${place.line}, ${name}, ${what}.`,

@@ -86,6 +86,11 @@ describe('reading a raw file', () => {
   it('lets blank lines stand at the end only, but reads them as missing in a file of one column', async () => {
     expect((await read('a,b\n1,2\n\n\n')).rows).toBe(1);
     expect(codesOf(await read('a,b\n1,2\n\n3,4\n'))).toEqual(['ragged']);
+    // They count as records before what is wrong with the next one.
+    expect((await read('a,b\n\n\n3,"4"x\n')).problems.map(({ code, where }) => [code, where.line, where.record])).toEqual([
+      ['ragged', 2, 1],
+      ['stray-quote', 4, 3],
+    ]);
     expect(rowsOf(await read('a\n1\n\n3\n'))).toEqual([['1'], [''], ['3']]);
   });
 

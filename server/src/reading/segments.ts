@@ -46,7 +46,7 @@ async function* read(
   options: ReadingOptions,
   facts: FileFacts,
 ): AsyncGenerator<Segment, void, void> {
-  const book = new ProblemBook();
+  const book = new ProblemBook(options.onDoubt);
   const builder = new SegmentBuilder(options, book);
   const scanner = new Scanner(reading.delimiter, reading.trim, options.mostCharacters ?? 1_000_000, builder);
   const decoder = decoderOf(reading.encoding);
@@ -111,8 +111,9 @@ class SegmentBuilder implements RecordSink {
   private readonly columns: (ColumnBuilder | null)[] = [];
   private readonly ready: Segment[] = [];
   private inSegment = 0;
-  private blankLines: number[] = [];
+  /** Blank lines since the last record: each is one line, so that they follow one another. */
   private blanks = 0;
+  private firstBlank = 0;
   private readonly segmentRows: number;
   private readonly mostRows: number;
   private readonly mostColumns: number;
@@ -133,12 +134,12 @@ class SegmentBuilder implements RecordSink {
     }
     if (blank && this.header.length > 1) {
       // Blank lines at the very end are harmless; before another record they are ragged.
-      this.blanks++;
-      if (this.blankLines.length < 20) this.blankLines.push(line);
+      if (this.blanks++ === 0) this.firstBlank = line;
       return;
     }
     if (this.blanks > 0) this.raggedBlanks();
     const row = this.rows++;
+    this.options.onRecord?.(line, this.rows);
     if (fields.length !== this.header.length) {
       this.book.ragged(line, this.rows, fields.length, this.header.length);
       return;
@@ -186,7 +187,7 @@ class SegmentBuilder implements RecordSink {
 
   /** The record being read; 0 while it is the header. */
   private get recordNumber(): number {
-    return this.hasHeader ? this.rows + 1 : 0;
+    return this.hasHeader ? this.rows + this.blanks + 1 : 0;
   }
 
   private readHeader(fields: string[], line: number): void {
@@ -215,10 +216,10 @@ class SegmentBuilder implements RecordSink {
   private raggedBlanks(): void {
     for (let index = 0; index < this.blanks; index++) {
       this.rows++;
-      this.book.ragged(this.blankLines[index] ?? 0, this.rows, 1, this.header.length);
+      this.options.onRecord?.(this.firstBlank + index, this.rows);
+      this.book.ragged(this.firstBlank + index, this.rows, 1, this.header.length);
     }
     this.blanks = 0;
-    this.blankLines = [];
   }
 
   private close(): void {

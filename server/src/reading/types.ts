@@ -97,7 +97,21 @@ export interface ReadingOptions {
   /** Only these columns are kept (all are checked). A name that the header lacks is a problem. */
   columns?: readonly string[];
   onProgress?: (progress: ReadingProgress) => void;
+  /** Told of each thing that is wrong with a line as it is found, however many there are; `problems` names the first of a kind only. */
+  onDoubt?: (doubt: Doubt) => void;
+  /** Told where each data record begins: its first line and its number, both from 1. */
+  onRecord?: (line: number, record: number) => void;
   signal?: AbortSignal;
+}
+
+/** One thing that is wrong with one line. Lines that do not belong to the encoding are found before records are told apart: no record. */
+export interface Doubt {
+  code: ReadingProblemCode;
+  line: number;
+  /** 0 for the header. */
+  record: number | null;
+  /** In a few words, without the line's number: "2 fields where the header has 3". */
+  what: string;
 }
 
 /** What is known of the whole file once it has been read. `problems` is empty exactly if the file can be used. */

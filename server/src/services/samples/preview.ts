@@ -2,8 +2,10 @@ import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import type { Preview, PreviewRequest, ReadingChoices } from '@tallystone/contracts/samples/reading';
 import { type CsvError, parse } from 'csv-parse/sync';
 import type { Context } from '../../context';
+import { decoderOf } from '../../reading/encodings';
 import { judgeFormat, numberReader, readSegments, sniff } from '../../reading/index';
 import { readChunks } from '../../storage/rawFiles';
+import { DoubtfulLines } from './doubtful-lines';
 import type { FoundSample } from './find-sample';
 import { problemItem } from './problem-item';
 import { type Counted, judgeKind, thin } from '../../profiling/kind';
@@ -56,7 +58,7 @@ export async function previewOf(bytes: Buffer, whole: boolean, chosen: PreviewRe
   const table = looseTable(textOf(bytes, partial.encoding), partial);
   const missing = chosen.missing ?? proposeMissing(table.rows);
   const choices: ReadingChoices = { ...partial, missing };
-  const { problems, records } = await problemsOf(bytes, whole, choices);
+  const { problems, records, doubtful } = await problemsOf(bytes, whole, choices);
   const columns = table.header.map((column, position) => judgeColumn(column, position, table.rows, choices));
   return {
     choices,
@@ -64,6 +66,7 @@ export async function previewOf(bytes: Buffer, whole: boolean, chosen: PreviewRe
     header: table.header,
     rows: table.rows.slice(0, shownRows),
     columns: columns.map(({ column, kind, against }) => ({ column, kind, against })),
+    doubtful,
     looked: { records, bytes: bytes.length, whole },
     problems,
     warnings: columns.flatMap(({ warning }) => (warning ? [warning] : [])),
@@ -108,15 +111,17 @@ const isCsvError = (error: unknown): error is CsvError =>
 
 /** For showing only: what is read is decoded strictly by the reader. */
 function textOf(bytes: Buffer, encoding: ReadingChoices['encoding']): string {
-  const name = encoding === 'windows-1252' ? 'windows-1252' : encoding === 'utf-16be' ? 'utf-16be' : encoding;
-  return new TextDecoder(name).decode(bytes.subarray(0, 1024 * 1024));
+  const part = bytes.subarray(0, 1024 * 1024);
+  // TextDecoder of some releases of Node.js takes Windows-1252 for Latin-1.
+  if (encoding === 'windows-1252') return decoderOf(encoding).decode(part, 1, () => undefined);
+  return new TextDecoder(encoding).decode(part);
 }
 
 async function problemsOf(
   bytes: Buffer,
   whole: boolean,
   choices: ReadingChoices,
-): Promise<{ problems: ProblemItem[]; records: number }> {
+): Promise<Pick<Preview, 'problems' | 'doubtful'> & { records: number }> {
   // Part of a file is cut after its last complete line, so that the cut itself is no problem.
   const unit = choices.encoding.startsWith('utf-16') ? Buffer.from('\n', 'utf16le') : Buffer.from('\n');
   if (choices.encoding === 'utf-16be') unit.swap16();
@@ -124,12 +129,18 @@ async function problemsOf(
   async function* once(): AsyncGenerator<Buffer> {
     yield bytes.subarray(0, end);
   }
-  const file = readSegments(once(), choices);
+  const doubtful = new DoubtfulLines(whole);
+  const { onDoubt, onRecord } = doubtful;
+  const file = readSegments(once(), choices, { onDoubt, onRecord });
   for await (const segment of file.segments) void segment;
   const facts = file.facts();
   // A quoted line break at the cut looks like a quote that is never closed.
   const problems = facts.problems.filter(({ code }) => whole || code !== 'unclosed-quote');
-  return { problems: problems.map(problemItem), records: facts.rows };
+  return {
+    problems: problems.map(problemItem),
+    records: facts.rows,
+    doubtful: doubtful.of(bytes.subarray(0, end), choices.encoding),
+  };
 }
 
 function proposeMissing(rows: Table['rows']): string[] {

@@ -14,6 +14,7 @@ import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { Tombstone } from '../../../ui/tombstone';
 import { type Preview, type ReadingChoices, Samples, oneSample } from '../data/samples';
+import { DoubtfulLines } from '../ui/doubtful-lines';
 import { readingFinding } from '../ui/findings';
 import { PreviewTable } from '../ui/preview-table';
 import { ReadingForm } from '../ui/reading-form';
@@ -25,7 +26,17 @@ import { SampleSteps } from '../ui/sample-steps';
   selector: 'ts-reading-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
   host: { class: 'ts-page' },
-  imports: [MatButtonModule, PageHeader, PreviewTable, ProblemList, ReadingForm, RunProgress, SampleSteps, Tombstone],
+  imports: [
+    DoubtfulLines,
+    MatButtonModule,
+    PageHeader,
+    PreviewTable,
+    ProblemList,
+    ReadingForm,
+    RunProgress,
+    SampleSteps,
+    Tombstone,
+  ],
   template: `
     <div class="ts-stack">
       <ts-sample-steps
@@ -65,6 +76,7 @@ import { SampleSteps } from '../ui/sample-steps';
           </div>
         }
         <ts-preview-table [preview]="view" />
+        <ts-doubtful-lines [preview]="view" />
       } @else if (looking.busy()) {
         <p class="ts-second" role="status">Looking at the file</p>
       }

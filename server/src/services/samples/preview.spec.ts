@@ -1,0 +1,83 @@
+import { mostDoubtfulLines } from '@tallystone/contracts/samples/reading';
+import { describe, expect, it } from 'vitest';
+import { previewOf } from './preview';
+
+const doubtfulOf = async (text: string | Buffer, encoding: 'utf-8' | 'utf-16le' | 'utf-16be' | 'windows-1252' = 'utf-8', whole = true) => {
+  const bytes = typeof text === 'string' ? Buffer.from(text) : text;
+  return (await previewOf(bytes, whole, { delimiter: ',', encoding })).doubtful;
+}; // prettier-ignore
+
+describe('the doubtful lines of a preview', () => {
+  it('are none in a file that is as it should be', async () => {
+    expect(await doubtfulOf('a,b\n1,2\n"x\ny",4\n\n')).toEqual({ lines: [], count: 0 });
+  });
+
+  it('come with line, record, text and what is wrong, each line once', async () => {
+    const bytes = Buffer.concat([
+      Buffer.from('a,b\n1,2\n"two\nlines",2\n3\n\n5,"x"y\n'),
+      Buffer.from([0xe9, 0xc3, 0xa9]),
+      Buffer.from('\n7,\0\n8,"open\n9,9\n'),
+    ]);
+    expect(await doubtfulOf(bytes)).toEqual({
+      count: 6,
+      lines: [
+        { line: 5, record: 3, text: '3', clipped: false, doubts: ['1 field where the header has 2'] },
+        { line: 6, record: 4, text: '', clipped: false, doubts: ['1 field where the header has 2'] },
+        { line: 7, record: 5, text: '5,"x"y', clipped: false, doubts: ['text after a closing quote'] },
+        { line: 8, record: 6, text: '\\xE9é', clipped: false, doubts: ['not UTF-8', '1 field where the header has 2'] },
+        { line: 9, record: 7, text: '7,\\0', clipped: false, doubts: ['column 2 ("b") contains a NUL byte'] },
+        { line: 10, record: 8, text: '8,"open', clipped: false, doubts: ['a quote that is never closed'] },
+      ],
+    });
+  });
+
+  it('tell the record of a line that is wrongly encoded, inside a record of several lines and in the header', async () => {
+    const bytes = Buffer.from('n\xe9,b\n1,2\n"x\n\xe9\ny",2\n3,4\n', 'latin1');
+    const { lines } = await doubtfulOf(bytes);
+    expect(lines.map(({ line, record, text }) => [line, record, text])).toEqual([
+      [1, null, 'n\\xE9,b'],
+      [4, 2, '\\xE9'],
+    ]);
+  });
+
+  it('are clipped, and listed up to the limit with the count of all', async () => {
+    const long = `${'x'.repeat(199)}é`;
+    const { lines, count } = await doubtfulOf(`a,b\r\n${`${long}y\r\n`.repeat(70)}1,2\r\n`);
+    expect(count).toBe(70);
+    expect(lines).toHaveLength(mostDoubtfulLines);
+    expect(lines[0]).toMatchObject({ line: 2, text: long, clipped: true });
+    expect(lines.at(-1)?.line).toBe(mostDoubtfulLines + 1);
+  });
+
+  it('are the first of the file, whichever doubt is found first', async () => {
+    // All of these bytes are decoded before the first record is told apart.
+    const ragged = '1\n'.repeat(60);
+    const bytes = Buffer.from(`a,b\n${ragged}${'\xe9,2\n'.repeat(60)}`, 'latin1');
+    const { lines, count } = await doubtfulOf(bytes);
+    expect(count).toBe(120);
+    expect(lines.map(({ line }) => line)).toEqual(Array.from({ length: mostDoubtfulLines }, (_, place) => place + 2));
+  });
+
+  it('are shown in the encoding that was chosen', async () => {
+    const text = 'prix,b\r\n€ 5\r\nœuf,1\r\n';
+    const wide = Buffer.from(`\ufeff${text}`, 'utf16le');
+    for (const [bytes, encoding] of [[wide, 'utf-16le'], [Buffer.from(wide).swap16(), 'utf-16be'], [Buffer.from([...'prix,b\n'].map((one) => one.charCodeAt(0)).concat([0x80, 0x20, 0x35, 10])), 'windows-1252']] as const)
+      expect((await doubtfulOf(bytes, encoding)).lines.map((one) => one.text)).toEqual(['€ 5']); // prettier-ignore
+    const western = Buffer.from([...Buffer.from('a,b\n1,'), 0x80, 0x81, 10]);
+    expect((await doubtfulOf(western, 'windows-1252')).lines[0].text).toBe('1,€\\x81');
+    expect((await previewOf(western.fill(0x80, 6), true, { delimiter: ',', encoding: 'windows-1252' })).rows[0].cells[1]).toBe(
+      '€€€',
+    );
+  });
+
+  it('say nothing of a quote that the end of the part leaves open', async () => {
+    const part = 'a,b\n1,2\n3\n4,"open\n';
+    expect((await doubtfulOf(part, 'utf-8', false)).lines.map(({ line }) => line)).toEqual([3]);
+    expect((await doubtfulOf(part, 'utf-8', true)).lines.map(({ line }) => line)).toEqual([3, 4]);
+  });
+
+  it('are counted fast where there are very many', async () => {
+    const { lines, count } = await doubtfulOf(`a,b\n${'\n'.repeat(1_500_000)}1,2\n`);
+    expect([lines.length, count]).toEqual([mostDoubtfulLines, 1_500_000]);
+  });
+});
