@@ -210,7 +210,11 @@ describe('numbers and dates', () => {
   });
 
   it('asks day or month first', async () => {
-    const [date] = await columnsOf(file('applied,bad', 40, (row) => `0${(row % 9) + 1}/04/2024,${row % 2}`));
+    const text = file('applied,bad', 40, (row) => `0${(row % 9) + 1}/04/2024,${row % 2}`);
+    const { choices, problems } = await preview(text);
+    expect(choices).not.toHaveProperty('dateOrder');
+    expect(problems).toMatchObject([{ code: 'date-order', where: { column: 'applied' } }]);
+    const [date] = await columnsOf(text);
     expect(date.flags[0]).toMatchObject({ code: 'doubtful-dates' });
     expect(date.flags[0].finding).toContain('day first or month first cannot be told');
   });

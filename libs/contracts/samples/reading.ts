@@ -11,6 +11,8 @@ export const ReadingChoices = z
     trim: z.boolean(),
     /** Texts that mean "missing" in every column. */
     missing: z.array(z.string().max(100)).max(50),
+    /** How dates such as 03/04/2024 are to be read; left out, as in earlier readings: only ISO dates are dates. */
+    dateOrder: z.enum(['year-month-day', 'day-month-year', 'month-day-year']).optional(),
   })
   .meta({ id: 'ReadingChoices' });
 export type ReadingChoices = z.infer<typeof ReadingChoices>;
@@ -43,10 +45,14 @@ export type DoubtfulLine = z.infer<typeof DoubtfulLine>;
 /** The first rows as they would be read, with everything that is doubtful, before anything is decided. */
 export const Preview = z
   .object({
+    /** Without a date order where the file holds dates whose order nothing tells: that is for a person to say. */
     choices: ReadingChoices,
-    /** Why each choice was proposed, one sentence each; empty for what the person chose. */
+    /** Why each choice was proposed, one sentence each; for what the person chose only what the values say of the date order. */
     reasons: z.array(
-      z.object({ choice: z.enum(['delimiter', 'encoding', 'decimal', 'thousands', 'trim', 'missing']), reason: z.string() }),
+      z.object({
+        choice: z.enum(['delimiter', 'encoding', 'decimal', 'thousands', 'trim', 'missing', 'dateOrder']),
+        reason: z.string(),
+      }),
     ),
     header: z.array(z.string()),
     rows: z.array(z.object({ record: z.int(), line: z.int(), cells: z.array(z.string()) })),

@@ -84,6 +84,12 @@ describe('a specification', () => {
     expect(parseSpecification(JSON.parse(JSON.stringify(complete)))).toEqual({ specification: complete });
   });
 
+  it('states a date order only where it was given, so that older ones keep their fingerprint', () => {
+    expect(accepted().data).not.toHaveProperty('dateOrder');
+    expect(accepted({ data: { dateOrder: 'day-month-year' } }).data.dateOrder).toBe('day-month-year');
+    expect(places({ data: { dateOrder: 'day first' } })).toEqual(['invalid-value data.dateOrder']);
+  });
+
   it('reports every problem at once, each with its place', () => {
     const broken = {
       format: 'tallystone-specification',

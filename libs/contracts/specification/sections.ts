@@ -45,6 +45,8 @@ const data: z.ZodType<DataReading, unknown> = checked<DataReading>(
       .default(null),
     trim: z.boolean().default(true),
     missing: texts.default(['', 'NA']),
+    // No default is written in: a specification from before this key keeps its fingerprint.
+    dateOrder: z.enum(['year-month-day', 'day-month-year', 'month-day-year']).optional(),
   }),
   (value, report) => {
     if (value.thousands === value.decimal)

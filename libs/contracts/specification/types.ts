@@ -5,6 +5,9 @@
 
 export type Encoding = 'utf-8' | 'utf-16le' | 'utf-16be' | 'windows-1252';
 
+/** In which order the parts of a date stand. Year, month, day means ISO dates alone. */
+export type DateOrder = 'year-month-day' | 'day-month-year' | 'month-day-year';
+
 /** How the raw file is read. */
 export interface DataReading {
   /** SHA-256 of the file's bytes, lower-case hexadecimal; null = not tied to one file. */
@@ -19,6 +22,8 @@ export interface DataReading {
   trim: boolean;
   /** Texts that mean "missing", in every column. */
   missing: string[];
+  /** Only ISO dates are dates when left out. An optional extension of the format. */
+  dateOrder?: DateOrder | undefined;
 }
 
 /**

@@ -84,7 +84,11 @@ function doubtful(values: readonly Counted[], total: number, numbers: number, re
         : monthFirst && !dayFirst
           ? 'with the month first'
           : 'day first or month first cannot be told';
-    const finding = `Dates such as ${dates[0].text} (${order}). Only ISO dates (YYYY-MM-DD) are used as dates; write them so in the file to split by date.`;
+    const twoDigits = dates.some(({ text }) => /\D\d{2}$/.test(text));
+    const next = twoDigits
+      ? 'To use them as dates, write the year with four digits in the file'
+      : 'To use them as dates, read the file again with their date order';
+    const finding = `Dates such as ${dates[0].text} (${order}). ${next}.`;
     return { against: finding, flags: [{ code: 'doubtful-dates', weight: 'look', finding }] };
   }
   const judged = judgeFormat(

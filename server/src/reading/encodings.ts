@@ -142,7 +142,8 @@ class Utf16Decoder implements Decoder {
   }
 }
 
-function lineEnds(text: string, place: number): number {
+/** Line ends (LF, CR or both) of a text before this place. */
+export function lineEnds(text: string, place: number): number {
   let count = 0;
   for (let i = 0; i < place; i++) {
     const code = text.charCodeAt(i);

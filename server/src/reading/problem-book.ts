@@ -1,4 +1,5 @@
-import type { Encoding } from '@tallystone/contracts/specification/types';
+import type { DateOrder, Encoding } from '@tallystone/contracts/specification/types';
+import { orderWords } from './dates';
 import { ENCODING_NAMES } from './encodings';
 import type { Doubt, ReadingProblem, ReadingProblemCode } from './types';
 
@@ -68,6 +69,10 @@ export class ProblemBook {
       position,
       column,
     });
+  }
+
+  noSuchDate(line: number, record: number, position: number, column: string, order: DateOrder): void {
+    this.cellFault('no-such-date', `is no date that exists, read ${orderWords[order]}`, { line, record, position, column });
   }
 
   nul(line: number, record: number, position: number, column: string | undefined): void {

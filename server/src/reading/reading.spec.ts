@@ -144,6 +144,24 @@ describe('reading a raw file', () => {
     expect((await read(`a,b\n${'x'.repeat(1_000_000)},2\n`)).problems).toEqual([]);
   });
 
+  it('reads dates in a stated order, and names line, record and column of a day that does not exist', async () => {
+    const stated = { dateOrder: 'day-month-year', missing: ['', '00/00/0000'] } as const;
+    const file = await read('a,on\nx,3/4/2024\n1.2.3,"04.03.2024"\n2024-01-02,00/00/0000\n', stated);
+    expect(rowsOf(file)).toEqual([['x', '2024-04-03'], ['1.2.3', '2024-03-04'], ['2024-01-02', '00/00/0000']]); // prettier-ignore
+    expect(rowsOf(await read('on\n3/4/2024\n'))).toEqual([['3/4/2024']]);
+    const wrong = await read('a,on\n1,31/04/2024\n"two\nlines",30/02/2024\n3\n4,32/01/2024\n', stated);
+    expect(wrong.problems.map(({ code, where }) => [code, where.line, where.record, where.column ?? null])).toEqual([
+      ['no-such-date', 2, 1, 'on'],
+      ['no-such-date', 4, 2, 'on'],
+      ['ragged', 5, 3, null],
+      ['no-such-date', 6, 4, 'on'],
+    ]);
+    expect(wrong.problems[0].message).toBe(
+      'The cell in line 2, column 2 ("on"), is no date that exists, read with the day first.',
+    );
+    expect(wrong.columns).toEqual([]);
+  });
+
   it('recognises files that are no text', async () => {
     expect(codesOf(await read(Buffer.from('PK\u0003\u0004 [Content_Types].xml')))).toEqual(['spreadsheet']);
     expect(codesOf(await read(Buffer.from('PK\u0003\u0004 sample.csv')))).toEqual(['archive']);

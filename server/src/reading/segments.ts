@@ -1,6 +1,7 @@
 import { createHash } from 'node:crypto';
 import { ColumnBuilder, detached } from './dictionary';
-import { decoderOf } from './encodings';
+import { type DateReader, dateReader, noSuchDate } from './dates';
+import { decoderOf, lineEnds } from './encodings';
 import { headerProblems } from './header';
 import { openFile, openingBytes } from './opening';
 import { ProblemBook } from './problem-book';
@@ -47,7 +48,7 @@ async function* read(
   facts: FileFacts,
 ): AsyncGenerator<Segment, void, void> {
   const book = new ProblemBook(options.onDoubt);
-  const builder = new SegmentBuilder(options, book);
+  const builder = new SegmentBuilder(reading, options, book);
   const scanner = new Scanner(reading.delimiter, reading.trim, options.mostCharacters ?? 1_000_000, builder);
   const decoder = decoderOf(reading.encoding);
   const hash = createHash('sha256');
@@ -118,10 +119,14 @@ class SegmentBuilder implements RecordSink {
   private readonly mostRows: number;
   private readonly mostColumns: number;
 
+  private readonly readDate: DateReader | null;
+
   constructor(
+    private readonly reading: ReadingChoices,
     private readonly options: ReadingOptions,
     private readonly book: ProblemBook,
   ) {
+    this.readDate = dateReader(reading.dateOrder, reading.missing ?? []);
     this.segmentRows = options.segmentRows ?? 65_536;
     this.mostRows = options.mostRows ?? 1_000_000;
     this.mostColumns = options.mostColumns ?? 200;
@@ -144,6 +149,7 @@ class SegmentBuilder implements RecordSink {
       this.book.ragged(line, this.rows, fields.length, this.header.length);
       return;
     }
+    if (this.readDate !== null) this.readDates(fields, line, this.readDate);
     if (row >= this.mostRows) {
       this.book.tooManyRows = this.mostRows;
       this.book.any = true;
@@ -210,6 +216,19 @@ class SegmentBuilder implements RecordSink {
     }
     for (const name of this.header) {
       this.columns.push(wanted === null || wanted.has(name) ? new ColumnBuilder(this.segmentRows) : null);
+    }
+  }
+
+  /** Puts ISO dates in the place of those in the stated order. */
+  private readDates(fields: string[], line: number, read: DateReader): void {
+    for (let index = 0; index < fields.length; index++) {
+      const iso = read(fields[index]);
+      if (iso === null) continue;
+      if (iso !== noSuchDate) fields[index] = iso;
+      else {
+        const breaks = fields.slice(0, index).reduce((sum, text) => sum + lineEnds(text, text.length), 0);
+        this.book.noSuchDate(line + breaks, this.rows, index + 1, this.header[index], this.reading.dateOrder ?? 'year-month-day');
+      }
     }
   }
 

@@ -1,4 +1,4 @@
-import type { Encoding } from '@tallystone/contracts/specification/types';
+import type { DateOrder, Encoding } from '@tallystone/contracts/specification/types';
 
 /** What reading a raw file needs to know, what it gives, and how it says what is wrong. See index.ts for how to use it. */
 
@@ -9,6 +9,10 @@ export interface ReadingChoices {
   delimiter: string;
   /** Remove blanks and tabs around unquoted fields. */
   trim: boolean;
+  /** Fields in the form of a date in this order become ISO dates; left out, or year first: none is touched. */
+  dateOrder?: DateOrder | undefined;
+  /** Texts that mean "missing" and are therefore no dates, whatever their form. */
+  missing?: readonly string[];
 }
 
 /**
@@ -48,7 +52,8 @@ export type ReadingProblemCode =
   | 'reserved-header'
   | 'too-many-columns'
   | 'too-many-rows'
-  | 'missing-column';
+  | 'missing-column'
+  | 'no-such-date';
 
 /** Texts of up to `segmentRows` consecutive records of one column, coded by a dictionary of their own. */
 export interface ColumnSegment {

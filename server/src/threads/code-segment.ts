@@ -14,7 +14,7 @@ export interface CodePayload {
   readonly bytes: Uint8Array;
   readonly rows: number;
   readonly header: readonly string[];
-  readonly choices: Pick<ReadingChoices, 'delimiter' | 'trim' | 'decimal' | 'missing'>;
+  readonly choices: Pick<ReadingChoices, 'delimiter' | 'trim' | 'decimal' | 'missing' | 'dateOrder'>;
   readonly mostBytes: number;
   readonly seed: number;
   /** Styles of the columns in earlier segments. */
@@ -54,6 +54,8 @@ export const codeSegment: Task<CodePayload, CodeAnswer> = (payload, control) => 
     mostBytes: payload.mostBytes,
     sign: choices.decimal.charCodeAt(0),
     seed: payload.seed,
+    dateOrder: choices.dateOrder,
+    missing: choices.missing,
   };
   // The first segment has more rows than the others: what it took is not kept for them.
   const name = JSON.stringify({ ...form, first: payload.personal === null });

@@ -1,6 +1,9 @@
 import type { Writer } from '../page/writer';
 import { bytesText, plural, rate, timeText, whole } from '../number-texts';
 
+/** Said of what is not an ISO date alone. */
+const dateWords = { 'year-month-day': '', 'day-month-year': ', dates day first', 'month-day-year': ', dates month first' } as const;
+
 /** 6 Data, lineage, quality. */
 export function writeData(writer: Writer): void {
   const { input } = writer;
@@ -31,7 +34,7 @@ export function writeData(writer: Writer): void {
   writer.facts([
     [
       'Read as',
-      `${data.encoding}, delimiter ${data.delimiter === '\t' ? 'tab' : `“${data.delimiter}”`}, decimal sign “${data.decimal}”`,
+      `${data.encoding}, delimiter ${data.delimiter === '\t' ? 'tab' : `“${data.delimiter}”`}, decimal sign “${data.decimal}”${dateWords[data.dateOrder ?? 'year-month-day']}`,
     ],
     ['Missing', data.missing.map((token) => (token === '' ? '(empty)' : token)).join(', ')],
   ]);

@@ -1,4 +1,5 @@
 import { ByteDictionary } from './byte-dictionary';
+import { type DateRewriter, isoLength } from './date-rewriter';
 import type { FieldIndex } from './field-index';
 import { type NumberStyle, StyleVotes, mostDecimals, mostWhole } from './number-style';
 import { notPlainNumber, numberHashOne, numberHashTwo, readPlain } from './plain-number';
@@ -41,6 +42,7 @@ export class ColumnCoder implements CodedColumn {
     private readonly sign: number,
     capacity: number,
     seed: number,
+    private readonly dates: DateRewriter | null = null,
   ) {
     this.cells = new Int32Array(capacity);
     this.texts = new ByteDictionary(seed, sign);
@@ -127,7 +129,7 @@ export class ColumnCoder implements CodedColumn {
         a = numberHashOne(whole, decimals);
         b = numberHashTwo(whole, decimals);
       } else {
-        const code = texts.codeOf(bytes, words, start, end);
+        const code = this.codeOf(bytes, words, start, end);
         cell = textBase + code;
         a = texts.rowOne[code];
         b = texts.rowTwo[code];
@@ -145,11 +147,18 @@ export class ColumnCoder implements CodedColumn {
     const { one, two } = hashes;
     const first = this.rows;
     for (let row = 0, field = this.position; row < rows; row++, field += width) {
-      const code = texts.codeOf(bytes, words, starts[field], ends[field]);
+      const code = this.codeOf(bytes, words, starts[field], ends[field]);
       cells[first + row] = textBase + code;
       one[row] = Math.imul(one[row] ^ texts.rowOne[code], 0x0100_0193);
       const turned = two[row];
       two[row] = Math.imul(((turned << 13) | (turned >>> 19)) ^ texts.rowTwo[code], 0x85eb_ca6b);
     }
+  }
+
+  /** Code of a text; a date in the stated order is the text of its ISO date. */
+  private codeOf(bytes: Uint8Array, words: DataView, start: number, end: number): number {
+    const { dates, texts } = this;
+    if (dates === null || !dates.rewrite(bytes, start, end)) return texts.codeOf(bytes, words, start, end);
+    return texts.codeOf(dates.bytes, dates.words, 0, isoLength);
   }
 }

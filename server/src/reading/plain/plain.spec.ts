@@ -39,6 +39,8 @@ async function fast(bytes: Buffer, choices: ReadingChoices, size: number): Promi
         sign: 46,
         seed: 99,
         mostRows: segmentRows,
+        dateOrder: choices.dateOrder,
+        missing: choices.missing ?? [],
       });
       coder.begin([], []);
       coder.add(piece);
@@ -113,6 +115,36 @@ describe('the fast reader', () => {
       { numRuns: 400 },
     ); // prettier-ignore
   });
+
+  it('reads dates in a stated order as the careful one does, and leaves a day that does not exist', async () => {
+    const part = fc.integer({ min: 0, max: 32 }).map((value) => (value % 3 === 0 ? String(value).padStart(2, '0') : String(value)));
+    const real = fc.tuple(fc.integer({ min: 1, max: 12 }), fc.integer({ min: 1, max: 12 }));
+    const date = fc.oneof(
+      { weight: 8, arbitrary: fc.tuple(real, fc.constantFrom('/', '.', '-')).map(([[a, b], sign]) => `${a}${sign}${b}${sign}2024`) },
+      { weight: 1, arbitrary: fc.tuple(part, part, fc.constantFrom('/', '.', '-')).map(([a, b, sign]) => `${a}${sign}${b}${sign}2023`) },
+      { weight: 4, arbitrary: fc.constantFrom('', '1', '2.5', 'NA', '2024-03-04', '04/03/24', '1.2.20244', '00/00/0000', '1/2-2024', 'é/1/2024') },
+    );
+    const table = fc
+      .integer({ min: 1, max: 3 })
+      .chain((width) => fc.array(fc.array(date, { minLength: width, maxLength: width }), { minLength: 1, maxLength: 30 }));
+    const outcomes = { read: 0, 'not plain': 0 };
+    await fc.assert(
+      fc.asyncProperty(table, sizes, fc.constantFrom('day-month-year' as const, 'month-day-year' as const), fc.boolean(), async (rows, cut, dateOrder, quoted) => {
+        const bytes = Buffer.from(stringify([rows[0].map((_, place) => `c${place}`), ...rows], { quoted }));
+        const choices = { ...choicesOf(',', true), dateOrder, missing: ['', 'NA', '00/00/0000'] };
+        outcomes[await same(bytes, choices, cut)]++;
+      }),
+      { numRuns: 400 },
+    );
+    expect(outcomes.read).toBeGreaterThan(100);
+    expect(outcomes['not plain']).toBeGreaterThan(30);
+    // Spelled in two ways, a day is one text and its rows are equal.
+    const twice = await fast(Buffer.from('a\n3/4/2024\n03.04.2024\n2024-04-03\n'), { ...choicesOf(',', true), dateOrder: 'day-month-year' }, 9);
+    if (typeof twice === 'string') throw new Error(twice);
+    expect(twice.segments.flat(2)).toEqual(['2024-04-03', '2024-04-03', '2024-04-03']);
+    expect(new Set(twice.keys).size).toBe(1);
+    expect(await fast(Buffer.from('a\n31/4/2024\n'), { ...choicesOf(',', true), dateOrder: 'day-month-year' }, 9)).toContain('does not exist');
+  }); // prettier-ignore
 
   it('agrees on anything else, or leaves it', async () => {
     const wild = fc

@@ -1,5 +1,7 @@
 import { type CodedColumn, ColumnCoder } from './column-coder';
 import { FieldIndex, type FieldForm } from './field-index';
+import type { DateOrder } from '@tallystone/contracts/specification/types';
+import { dateRewriter } from './date-rewriter';
 import type { NumberStyle } from './number-style';
 
 export interface SegmentForm extends FieldForm {
@@ -9,6 +11,9 @@ export interface SegmentForm extends FieldForm {
   readonly seed: number;
   /** Most rows of a segment. */
   readonly mostRows: number;
+  /** As in `ReadingChoices`. */
+  readonly dateOrder?: DateOrder | undefined;
+  readonly missing?: readonly string[];
 }
 
 /**
@@ -30,9 +35,10 @@ export class SegmentCoder {
     this.one = new Int32Array(this.index.mostRows);
     this.two = new Int32Array(this.index.mostRows);
     this.keys = new Float64Array(form.mostRows);
+    const dates = dateRewriter(form.dateOrder, form.missing ?? []);
     this.coders = Array.from(
       { length: form.width },
-      (_, position) => new ColumnCoder(position, form.width, form.sign, form.mostRows, form.seed),
+      (_, position) => new ColumnCoder(position, form.width, form.sign, form.mostRows, form.seed, dates),
     );
     this.columns = this.coders;
   }

@@ -59,7 +59,7 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
   const weight = holder('weight');
   return {
     content: {
-      data: { sha256: sample.sha256, ...sample.reading },
+      data: { sha256: sample.sha256, ...withoutDefault(sample.reading) },
       exclusions: draft.exclusions.map(exclusionOf),
       outcome: outcomeOf(draft.outcome, outcome.column),
       declined:
@@ -72,6 +72,11 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
     },
     problems,
   };
+}
+
+/** Year, month, day is what a specification says by leaving the order out, so that it keeps the fingerprint that it always had. */
+function withoutDefault({ dateOrder, ...reading }: ReadingChoices): ReadingChoices {
+  return dateOrder === undefined || dateOrder === 'year-month-day' ? reading : { ...reading, dateOrder };
 }
 
 type Say = (code: string, message: string, where: ProblemItem['where']) => void;
@@ -141,7 +146,11 @@ function checkColumn(entry: DefinedColumn, profile: ColumnProfile, say: Say): vo
       where,
     );
   if (role === 'application date' && profile.kind !== 'date')
-    say('not-a-date', `${column} holds no ISO dates (YYYY-MM-DD).`, where);
+    say(
+      'not-a-date',
+      `${column} holds no dates as the file was read. Dates are YYYY-MM-DD, or in the date order of the reading choices.`,
+      where,
+    );
   if (role === 'characteristic' && kind === 'date')
     say('date-characteristic', `${column} is a date: no characteristic as it stands.`, where);
   if (profile.hashed && !['identifier', 'not used'].includes(role)) {

@@ -81,3 +81,60 @@ describe('the doubtful lines of a preview', () => {
     expect([lines.length, count]).toEqual([mostDoubtfulLines, 1_500_000]);
   });
 });
+
+describe('the date order of a preview', () => {
+  const look = (dates: string[], chosen: Parameters<typeof previewOf>[2] = {}) =>
+    previewOf(Buffer.from(`n,applied\n${dates.map((date, row) => `${row},${date}\n`).join('')}`), true, chosen);
+  const reasonOf = ({ reasons }: Awaited<ReturnType<typeof look>>): string | undefined =>
+    reasons.find(({ choice }) => choice === 'dateOrder')?.reason;
+
+  it('is proposed where a value decides, with that value', async () => {
+    const day = await look(['03/04/2024', '04/04/2024', '13/04/2024', '14/04/2024']);
+    expect(day.choices.dateOrder).toBe('day-month-year');
+    expect(reasonOf(day)).toBe('13/04/2024 in line 4 (applied) can only be day first; no value looked at says month first.');
+    expect(day.problems).toEqual([]);
+    expect(day.columns[1]).toMatchObject({ kind: 'date', against: null });
+    expect(day.rows[0].cells[1]).toBe('2024-04-03');
+    const month = await look(['03.04.2024', '4.30.2024']);
+    expect(month.choices.dateOrder).toBe('month-day-year');
+    expect(reasonOf(month)).toContain('4.30.2024 in line 3 (applied) can only be month first');
+  });
+
+  it('is asked for where nothing decides, and taken as it is said', async () => {
+    const asked = await look(['03/04/2024', '04/05/2024']);
+    expect(asked.choices).not.toHaveProperty('dateOrder');
+    expect(asked.problems).toMatchObject([{ code: 'date-order', where: { column: 'applied', position: 2 } }]);
+    expect(asked.problems[0].message).toContain('03/04/2024 in line 2 (applied) can be day first or month first');
+    expect(asked.rows[0].cells[1]).toBe('03/04/2024');
+    const said = await look(['03/04/2024', '04/05/2024'], { dateOrder: 'month-day-year' });
+    expect(said.problems).toEqual([]);
+    expect(said.rows[0].cells[1]).toBe('2024-03-04');
+    expect(reasonOf(said)).toContain('no value looked at tells which');
+    const text = await look(['03/04/2024', '04/05/2024'], { dateOrder: 'year-month-day' });
+    expect(text).toMatchObject({ problems: [], columns: [{}, { kind: 'categorical' }] });
+  });
+
+  it('is asked for where values contradict each other, and shows what an order makes of them', async () => {
+    const both = ['13/04/2024', '04/13/2024', '05/06/2024'];
+    const asked = await look(both);
+    expect(asked.problems[0].message).toContain(
+      '13/04/2024 in line 2 (applied) can only be day first, and 04/13/2024 in line 3 (applied) can only be month first',
+    );
+    const said = await look(both, { dateOrder: 'day-month-year' });
+    expect(said.problems).toMatchObject([{ code: 'no-such-date', where: { line: 3, record: 2, column: 'applied' } }]);
+    expect(said.doubtful.lines).toMatchObject([{ line: 3, text: '1,04/13/2024' }]);
+  });
+
+  it('is not asked for by ISO dates, two-digit years, missing dates or a stray date among texts', async () => {
+    for (const dates of [
+      ['2024-04-03', '2024-04-04'],
+      ['03/04/24', '04/05/24'],
+      ['a', '03/04/2024', 'b'],
+    ]) {
+      const { choices, problems } = await look(dates);
+      expect([choices.dateOrder, problems]).toEqual(['year-month-day', []]);
+    }
+    const missing = await look(['2024-04-03', '01/01/1900'], { missing: ['', '01/01/1900'] });
+    expect(missing.choices.dateOrder).toBe('year-month-day');
+  });
+});

@@ -2,9 +2,11 @@ import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import type { Preview, PreviewRequest, ReadingChoices } from '@tallystone/contracts/samples/reading';
 import { type CsvError, parse } from 'csv-parse/sync';
 import type { Context } from '../../context';
+import { dateReader } from '../../reading/dates';
 import { decoderOf } from '../../reading/encodings';
 import { judgeFormat, numberReader, readSegments, sniff } from '../../reading/index';
 import { readChunks } from '../../storage/rawFiles';
+import { type DateEvidence, dateEvidence, dateQuestion, dateReason, decidedOrder } from './date-evidence';
 import { DoubtfulLines } from './doubtful-lines';
 import type { FoundSample } from './find-sample';
 import { problemItem } from './problem-item';
@@ -57,18 +59,22 @@ export async function previewOf(bytes: Buffer, whole: boolean, chosen: PreviewRe
   };
   const table = looseTable(textOf(bytes, partial.encoding), partial);
   const missing = chosen.missing ?? proposeMissing(table.rows);
-  const choices: ReadingChoices = { ...partial, missing };
+  const evidence = dateEvidence(table.header, table.rows, missing);
+  const dateOrder = chosen.dateOrder ?? decidedOrder(evidence);
+  const choices: ReadingChoices = { ...partial, missing, ...(dateOrder && { dateOrder }) };
   const { problems, records, doubtful } = await problemsOf(bytes, whole, choices);
-  const columns = table.header.map((column, position) => judgeColumn(column, position, table.rows, choices));
+  const rows = withDates(table.rows, choices);
+  const columns = table.header.map((column, position) => judgeColumn(column, position, rows, choices));
   return {
     choices,
-    reasons: reasonsFor(chosen, choices, guessed.encodingStated, table),
+    reasons: reasonsFor(chosen, choices, guessed.encodingStated, table, evidence),
     header: table.header,
-    rows: table.rows.slice(0, shownRows),
+    rows: rows.slice(0, shownRows),
     columns: columns.map(({ column, kind, against }) => ({ column, kind, against })),
     doubtful,
     looked: { records, bytes: bytes.length, whole },
-    problems,
+    // Nothing is guessed in silence: without an answer the file waits.
+    problems: dateOrder === undefined ? [dateQuestion(evidence), ...problems] : problems,
     warnings: columns.flatMap(({ warning }) => (warning ? [warning] : [])),
   };
 }
@@ -76,6 +82,17 @@ export async function previewOf(bytes: Buffer, whole: boolean, chosen: PreviewRe
 interface Table {
   header: string[];
   rows: { record: number; line: number; cells: string[] }[];
+}
+
+/** The rows as they would be read: dates in the stated order as ISO dates. One that does not exist stays, for its problem to name. */
+function withDates(rows: Table['rows'], { dateOrder, missing }: ReadingChoices): Table['rows'] {
+  const read = dateReader(dateOrder, missing);
+  if (read === null) return rows;
+  const cell = (text: string): string => {
+    const iso = read(text);
+    return typeof iso === 'string' ? iso : text;
+  };
+  return rows.map((row) => ({ ...row, cells: row.cells.map(cell) }));
 }
 
 /** By csv-parse, which reads on where a file is not well formed: what is shown while something is still wrong with it. */
@@ -174,7 +191,13 @@ function judgeColumn(column: string, position: number, rows: Table['rows'], choi
   return { column, kind, against, warning };
 }
 
-function reasonsFor(chosen: PreviewRequest, choices: ReadingChoices, encodingStated: boolean, table: Table): Preview['reasons'] {
+function reasonsFor(
+  chosen: PreviewRequest,
+  choices: ReadingChoices,
+  encodingStated: boolean,
+  table: Table,
+  evidence: DateEvidence,
+): Preview['reasons'] {
   const width = table.header.length;
   const alike = table.rows.filter(({ cells }) => cells.length === width).length;
   const all: Preview['reasons'] = [
@@ -214,6 +237,7 @@ function reasonsFor(chosen: PreviewRequest, choices: ReadingChoices, encodingSta
           ? `Beside the empty field, ${choices.missing.filter((token) => token !== '').join(', ')} stand in the rows looked at.`
           : 'Only empty fields; no other usual token stands in the rows looked at.',
     },
+    { choice: 'dateOrder', reason: dateReason(evidence) },
   ];
-  return all.filter(({ choice }) => chosen[choice] === undefined);
+  return all.filter(({ choice }) => choice === 'dateOrder' || chosen[choice] === undefined);
 }

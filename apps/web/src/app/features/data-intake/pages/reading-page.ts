@@ -14,6 +14,7 @@ import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { Tombstone } from '../../../ui/tombstone';
 import { type Preview, type ReadingChoices, Samples, oneSample } from '../data/samples';
+import { orderWords } from '../ui/date-orders';
 import { DoubtfulLines } from '../ui/doubtful-lines';
 import { readingFinding } from '../ui/findings';
 import { PreviewTable } from '../ui/preview-table';
@@ -90,6 +91,8 @@ import { SampleSteps } from '../ui/sample-steps';
           <dd>{{ signWords(reading.decimal) }}</dd>
           <dt>Thousands sign</dt>
           <dd>{{ signWords(reading.thousands) }}</dd>
+          <dt>Date order</dt>
+          <dd>{{ orderWords(reading.dateOrder) }}</dd>
           <dt>Missing</dt>
           <dd>{{ missingWords() }}</dd>
         </dl>
@@ -144,6 +147,7 @@ export class ReadingPage {
     return problems.length === 0 ? null : new Problem(422, 'file', 'The file cannot be read like this', '', problems);
   });
   protected readonly signWords = signWords;
+  protected readonly orderWords = orderWords;
   private readonly settledWords = computed(() =>
     this.sample.hasValue() && this.sample.value().definitions > 0
       ? 'The file was read with these choices, and they stay: a confirmed definition rests on them.'

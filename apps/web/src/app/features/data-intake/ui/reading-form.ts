@@ -4,6 +4,7 @@ import { MatFormFieldModule } from '@angular/material/form-field';
 import { MatInputModule } from '@angular/material/input';
 import { MatSelectModule } from '@angular/material/select';
 import type { Preview, ReadingChoices } from '@tallystone/contracts/samples/reading';
+import { dateOrders, orderWords } from './date-orders';
 
 type Choice = Preview['reasons'][number]['choice'];
 
@@ -72,6 +73,20 @@ type Choice = Preview['reasons'][number]['choice'];
         <mat-hint>{{ why('thousands') }}</mat-hint>
       </mat-form-field>
       <mat-form-field>
+        <mat-label>Date order</mat-label>
+        <mat-select
+          [value]="choices().dateOrder ?? null"
+          [disabled]="disabled()"
+          placeholder="Please choose"
+          (selectionChange)="changed.emit({ dateOrder: $event.value })"
+        >
+          @for (order of orders; track order) {
+            <mat-option [value]="order">{{ orderWords(order) }}</mat-option>
+          }
+        </mat-select>
+        <mat-hint>{{ why('dateOrder') }}</mat-hint>
+      </mat-form-field>
+      <mat-form-field>
         <mat-label>Missing, beside the empty field</mat-label>
         <input matInput [value]="missing()" [disabled]="disabled()" placeholder="NA, NULL" (change)="setMissing($event)" />
         <mat-hint>{{ why('missing') || 'Parted by commas.' }}</mat-hint>
@@ -99,6 +114,8 @@ export class ReadingForm {
   readonly disabled = input(false);
   readonly changed = output<Partial<ReadingChoices>>();
 
+  protected readonly orders = dateOrders;
+  protected readonly orderWords = orderWords;
   protected readonly missing = computed(() =>
     this.choices()
       .missing.filter((token) => token !== '')

@@ -1,0 +1,61 @@
+import fc from 'fast-check';
+import { describe, expect, it } from 'vitest';
+import { dateReader, noSuchDate, numbersOfDate } from './dates';
+
+const of = (order: 'day-month-year' | 'month-day-year', missing: string[] = []) => {
+  const read = dateReader(order, missing);
+  if (read === null) throw new Error('no reader');
+  return read;
+};
+
+describe('dates in a stated order', () => {
+  it('become ISO dates, with one digit or two and each of the signs', () => {
+    for (const text of ['03/04/2024', '3/4/2024', '03.04.2024', '3-04-2024']) {
+      expect(of('day-month-year')(text)).toBe('2024-04-03');
+      expect(of('month-day-year')(text)).toBe('2024-03-04');
+    }
+  });
+
+  it('are refused where there is no such day', () => {
+    const read = of('day-month-year');
+    for (const text of [
+      '31/04/2024',
+      '29/02/2023',
+      '29/02/1900',
+      '00/01/2024',
+      '01/13/2024',
+      '1/0/2024',
+      '01/01/0000',
+      '99/99/9999',
+    ])
+      expect(read(text), text).toBe(noSuchDate);
+    for (const text of ['29/02/2024', '29/02/2000', '31/12/2024', '01/01/0001']) expect(typeof read(text), text).toBe('string');
+    expect(of('month-day-year')('13/04/2024')).toBe(noSuchDate);
+  });
+
+  it('are nothing else: other forms, two-digit years, two signs, ISO dates', () => {
+    const read = of('day-month-year');
+    for (const text of ['', '2024-04-03', '03/04/24', '03/04-2024', '3/4/20245', ' 3/4/2024', '3/4/2024 ', '٣/4/2024', '123/4/2024', '03042024', '3,4,2024', '1.2.3.4'])
+      expect(read(text), text).toBeNull(); // prettier-ignore
+  });
+
+  it('stay as they are where they mean missing, and where no order is stated', () => {
+    const read = of('day-month-year', ['NA', '00/00/0000', '01/01/1900']);
+    expect([read('00/00/0000'), read('01/01/1900'), read('1/1/1900')]).toEqual([null, null, '1900-01-01']);
+    expect(dateReader(undefined, [])).toBeNull();
+    expect(dateReader('year-month-day', [])).toBeNull();
+  });
+
+  it('come back from every day as the calendar of the language has it', () => {
+    const day = fc.date({ min: new Date('0001-01-01T00:00:00Z'), max: new Date('9999-12-31T00:00:00Z'), noInvalidDate: true });
+    fc.assert(
+      fc.property(day, fc.constantFrom('/', '.', '-'), fc.boolean(), (one, sign, padded) => {
+        const iso = one.toISOString().slice(0, 10);
+        const [year, month, date] = iso.split('-').map((part, place) => (padded || place === 0 ? part : String(Number(part))));
+        expect(of('day-month-year')([date, month, year].join(sign))).toBe(iso);
+        expect(of('month-day-year')([month, date, year].join(sign))).toBe(iso);
+        expect(numbersOfDate([date, month, year].join(sign))).toEqual([Number(date), Number(month)]);
+      }),
+    );
+  });
+});
