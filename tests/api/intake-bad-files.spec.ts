@@ -1,3 +1,5 @@
+import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
+import type { DraftContent } from '@tallystone/contracts/samples/definition';
 import type { Preview } from '@tallystone/contracts/samples/reading';
 import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
@@ -173,12 +175,14 @@ describe('numbers and dates', () => {
     const { body } = await modeller.get(`${path}/columns`).expect(200);
     const flag = body.columns[0].flags.find(({ code }: { code: string }) => code === 'unreadable-numbers');
     for (const token of ['"NaN"', '"1e309"', '"0x10"', '"Inf"']) expect(flag.finding).toContain(token);
+    expect(flag.values).toEqual(['0x10', '1e309', 'Inf', 'NaN']);
     const draft = await modeller.get(`${path}/draft`).expect(200);
     expect(draft.body.problems).toMatchObject([{ code: 'unreadable-numbers', where: { column: 'amount' } }]);
+    expect(draft.body.problems[0].message).toContain('Read the file again with these as missing tokens');
     // Named as missing they are settled.
     const again = await modeller
       .post(`${path}/readings`)
-      .send({ ...(await modeller.get(path)).body.reading, missing: ['', 'NaN', '1e309', '0x10', 'Inf'] })
+      .send({ ...(await modeller.get(path)).body.reading, missing: ['', ...(flag.values as string[])] })
       .expect(202);
     expect((await modeller.ended(again.body.id)).state).toBe('succeeded');
     const settled = await modeller.get(`${path}/draft`).expect(200);
@@ -207,6 +211,23 @@ describe('numbers and dates', () => {
     );
     expect(amount.kind).toBe('categorical');
     expect(amount.flags.map(({ code }) => code)).toContain('numbers-as-text');
+  });
+
+  it('refuses mixed decimals as a characteristic, with examples and what to do', async () => {
+    const text = file('amount;income;bad', 60, (row) => `${row % 2 === 0 ? `${row % 7},5` : `${row % 7}.5`};${row};${row % 2}`);
+    const { path } = await modeller.sample(modelId, text, { decimal: '.', thousands: null, delimiter: ';' });
+    const [amount] = (await modeller.get(`${path}/columns`).expect(200)).body.columns as ColumnProfile[];
+    expect(amount).toMatchObject({ kind: 'categorical', suggestedRole: 'not used', flags: [{ code: 'mixed-numbers', weight: 'stop' }] });
+    expect(amount.flags[0].finding).toMatch(/^Numbers are written in more than one way: "\d[.]5" \d×.* beside "\d,5" \d×.*\. Write them in one way/);
+    const draft = await modeller.get(`${path}/draft`).expect(200);
+    const content = draft.body.content as DraftContent;
+    expect(content.columns[0]).toMatchObject({ role: 'not used', reason: amount.suggestion });
+    expect(draft.body.problems).toEqual([]);
+    const columns = content.columns.map((one) => (one.column === 'amount' ? { ...one, role: 'characteristic', reason: 'tried' } : one));
+    const saved = await modeller.put(`${path}/draft`).set('If-Match', draft.headers.etag).send({ ...content, columns }).expect(200);
+    expect(saved.body.problems).toMatchObject([{ code: 'mixed-numbers', message: `amount: ${amount.flags[0].finding}`, where: { column: 'amount' } }]);
+    const refusal = await modeller.post(`${path}/definitions`).send({ revision: saved.body.revision as number }).expect(422);
+    expect(refusal.body.problems).toMatchObject([{ code: 'mixed-numbers' }]);
   });
 
   it('asks day or month first', async () => {

@@ -116,7 +116,7 @@ describe('files that are held until somebody answers', () => {
 
   it('mixed-decimals and ambiguous-dates', async () => {
     const mixed = await columnsOf((await read('not-ok/mixed-decimals.csv')).path);
-    expect(mixed.find(({ column }) => column === 'monthly_income')?.flags.map(({ code }) => code)).toContain('numbers-as-text');
+    expect(mixed.find(({ column }) => column === 'monthly_income')?.flags.map(({ code }) => code)).toContain('mixed-numbers');
     const dates = await columnsOf((await read('not-ok/ambiguous-dates.csv')).path);
     expect(
       dates.some(({ flags }) =>

@@ -35,6 +35,7 @@ export const columnFlags = [
   'repeated-identifiers',
   'unreadable-numbers',
   'numbers-as-text',
+  'mixed-numbers',
   'special-code-suspected',
   'doubtful-dates',
 ] as const;
@@ -45,6 +46,8 @@ export const ColumnFlag = z.object({
   weight: z.enum(['stop', 'look', 'note']),
   /** One sentence with its number. */
   finding: z.string(),
+  /** Of `unreadable-numbers`: texts that may mean "missing", the most frequent first, at most 20. Profiles from before have none. */
+  values: z.array(z.string()).optional(),
 });
 export type ColumnFlag = z.infer<typeof ColumnFlag>;
 

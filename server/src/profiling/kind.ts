@@ -1,6 +1,6 @@
 import type { ColumnFlag } from '@tallystone/contracts/samples/columns';
 import type { ColumnKind } from '@tallystone/contracts/samples/reading';
-import { type NumberFault, type NumberReader, judgeFormat } from '../reading/index';
+import { type NumberFault, type NumberReader, isNumberSomehow, judgeFormat, numberReader } from '../reading/index';
 
 /** Rows of one distinct text of a column that is not missing. */
 export interface Counted {
@@ -66,7 +66,11 @@ export function judgeNumbers(total: number, notNumbers: readonly Counted[], read
   const words = sum(notNumbers.filter(({ text }) => reader.fault(text) === 'text'));
   if (odd < total && total - words >= mostlyNumbers * total) {
     const finding = `${thin(odd)} of ${thin(total)} values are no numbers: ${listed(notNumbers, (text) => ` (${faultWords[reader.fault(text)]})`)}.`;
-    return { kind: 'numeric', against: finding, flags: [{ code: 'unreadable-numbers', weight: 'look', finding }] };
+    return {
+      kind: 'numeric',
+      against: finding,
+      flags: [{ code: 'unreadable-numbers', weight: 'look', finding, values: mayBeMissing(notNumbers) }],
+    };
   }
   return null;
 }
@@ -105,6 +109,13 @@ function doubtful(values: readonly Counted[], total: number, numbers: number, re
     const finding = `Numbers written with “${decimal}” as decimal sign${sign} (${example}): change the reading choices to use them as numbers.`;
     return { against: finding, flags: [{ code: 'numbers-as-text', weight: 'look', finding }] };
   }
+  const spelled = values.filter(({ text }) => isNumberSomehow(text));
+  if (sum(spelled) >= mostlyNumbers * total) {
+    const best = numberReader(judged.format);
+    const [one, other] = [true, false].map((read) => spelled.filter(({ text }) => Number.isNaN(best.read(text)) !== read));
+    const finding = `Numbers are written in more than one way: ${listed(one, undefined, 3)} beside ${listed(other, undefined, 3)}. Write them in one way in the file and bring it in again, or do not use the column.`;
+    return { against: finding, flags: [{ code: 'mixed-numbers', weight: 'stop', finding }] };
+  }
   if (numbers * 2 >= total) {
     const texts = values.filter(({ text }) => Number.isNaN(reader.read(text)));
     const finding = `${thin(numbers)} of ${thin(total)} values are numbers, the others are not: ${listed(texts)}.`;
@@ -115,10 +126,18 @@ function doubtful(values: readonly Counted[], total: number, numbers: number, re
 
 const sum = (values: readonly Counted[]): number => values.reduce((total, { count }) => total + count, 0);
 
-function listed(values: readonly Counted[], more: (text: string) => string = () => ''): string {
-  const sorted = [...values].sort((a, b) => b.count - a.count || (a.text < b.text ? -1 : 1));
-  const shown = sorted.slice(0, 8).map(({ text, count }) => `${JSON.stringify(text.slice(0, 40))}${more(text)} ${thin(count)}×`);
-  return shown.join(', ') + (sorted.length > 8 ? ` and ${thin(sorted.length - 8)} more` : '');
+const byFrequency = (a: Counted, b: Counted): number => b.count - a.count || (a.text < b.text ? -1 : 1);
+
+function listed(values: readonly Counted[], more: (text: string) => string = () => '', most = 8): string {
+  const sorted = [...values].sort(byFrequency);
+  const shown = sorted.slice(0, most).map(({ text, count }) => `${JSON.stringify(text.slice(0, 40))}${more(text)} ${thin(count)}×`);
+  return shown.join(', ') + (sorted.length > most ? ` and ${thin(sorted.length - most)} more` : '');
+}
+
+/** Texts that can be named as missing tokens: a number in another spelling is a number, and a token has at most 100 characters. */
+function mayBeMissing(notNumbers: readonly Counted[]): string[] {
+  const tokens = notNumbers.filter(({ text }) => text.length <= 100 && !isNumberSomehow(text));
+  return tokens.sort(byFrequency).slice(0, 20).map(({ text }) => text);
 }
 
 /** Whole numbers with a narrow no-break space between thousands. */

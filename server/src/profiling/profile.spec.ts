@@ -76,6 +76,21 @@ describe('what the quality table says of a column', () => {
     ).toEqual([]);
   });
 
+  it('sets numbers of mixed spelling to not used, with examples of each', () => {
+    const found = profile([...many(20, (k) => `${k}.5`), ...many(20, (k) => `${k},5`), '', 'NA']);
+    expect(found).toMatchObject({ kind: 'categorical', suggestedRole: 'not used' });
+    expect(found.flags.find(({ code }) => code === 'mixed-numbers')).toMatchObject({ weight: 'stop', finding: found.suggestion });
+    expect(found.suggestion).toContain('"0.5" 1×, "1.5" 1×, "10.5" 1× and 17 more beside "0,5" 1×');
+    // A thousands sign explains both, and words among numbers are categories.
+    expect(codes([...many(20, (k) => `${k}.5`), ...many(20, (k) => `${k + 1},500`)])).toContain('numbers-as-text');
+    expect(codes([...many(20, String), ...many(9, (k) => `w${k}`)])).toContain('numbers-as-text');
+  });
+
+  it('offers what may mean missing among numbers, but no number in another spelling', () => {
+    const found = profile([...many(196, String), 'NaN', '0x10', 'NaN', '1,5']);
+    expect(found.flags.find(({ code }) => code === 'unreadable-numbers')?.values).toEqual(['NaN', '0x10']);
+  });
+
   it('asks day or month first, and takes ISO dates as certain', () => {
     expect(profile(many(40, (k) => `0${(k % 9) + 1}/04/2024`)).flags[0].finding).toContain(
       'day first or month first cannot be told',

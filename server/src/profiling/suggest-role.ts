@@ -98,7 +98,8 @@ export function suggestRole(evidence: RoleEvidence): RoleSuggestion {
       ? { ...common, role: 'identifier', reason: evidence.personal.finding }
       : { ...common, role: 'not used', reason: `${evidence.personal.finding} Nothing is fitted on it.` };
   }
-  const stop = evidence.flags.find((flag) => flag.weight === 'stop');
+  // Numbers of mixed spelling are nearly all different texts, too: what can be done about it is said.
+  const stop = evidence.flags.find(({ code }) => code === 'mixed-numbers') ?? evidence.flags.find(({ weight }) => weight === 'stop');
   if (stop) return { ...common, role: 'not used', reason: stop.finding };
   for (const [role, fits, reason] of byHeading) {
     if (!fits.heading.test(heading)) continue;

@@ -13,6 +13,7 @@ export { readForReplay, sourceOfFile } from './file-source';
 export { readSegments, type SegmentedFile } from './segments';
 export { sniff, type Sniffed } from './sniff';
 export {
+  isNumberSomehow,
   judgeFormat,
   numberReader,
   type FormatJudgement,

@@ -81,6 +81,11 @@ const FORMATS: readonly NumberFormat[] = [
   { decimal: ',', thousands: '\u202f' },
 ];
 
+const readers = FORMATS.map(numberReader);
+
+/** Whether a text is a number in any of the formats that a column is judged by. */
+export const isNumberSomehow = (text: string): boolean => readers.some((reader) => !Number.isNaN(reader.read(text)));
+
 /**
  * Judges a whole column, not its first cells.
  * @param texts distinct texts; @param rows rows of each (default: one each)

@@ -125,10 +125,12 @@ function checkColumn(entry: DefinedColumn, profile: ColumnProfile, say: Say): vo
     else if (unreadable)
       say(
         'unreadable-numbers',
-        `${column}: ${unreadable.finding} Read the file again with these as missing tokens, treat the column as categorical, or do not use it.`,
+        `${column}: ${unreadable.finding} Read the file again with these as missing tokens (the column’s own part offers it in one step), treat the column as categorical, or do not use it.`,
         where,
       );
   }
+  const mixed = profile.flags.find(({ code }) => code === 'mixed-numbers');
+  if (role === 'characteristic' && mixed) say('mixed-numbers', `${column}: ${mixed.finding}`, where);
   if (role === 'weight' || role === 'incumbent score') {
     if (kind !== 'numeric') say('not-numeric', `A ${role} is numeric; ${column} is ${kind}.`, where);
   }

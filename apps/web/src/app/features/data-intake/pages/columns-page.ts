@@ -108,7 +108,14 @@ interface Row {
         </ts-table>
         @if (chosen(); as row) {
           <div class="chosen" #part>
-            <ts-column-editor [profile]="row.profile" [column]="row.defined" [editable]="editable()" (changed)="change($event)" />
+            <ts-column-editor
+              [profile]="row.profile"
+              [column]="row.defined"
+              [editable]="editable()"
+              [mayRead]="mayRead()"
+              (changed)="change($event)"
+              (readAgain)="readAgain($event)"
+            />
             @if (words.dictionary()) {
               <ts-dictionary-editor
                 [entry]="words.entry(row.profile.column)"
@@ -204,6 +211,7 @@ export class ColumnsPage {
   );
   readonly unsaved = computed(() => this.draft.unsaved() || this.words.unsaved());
   protected readonly editable = computed(() => this.sample.hasValue() && this.sample.value().abilities.includes('define'));
+  protected readonly mayRead = computed(() => this.sample.hasValue() && this.sample.value().abilities.includes('read-file'));
   protected readonly rows = computed<readonly Row[]>(() => {
     const profiles = this.columns.hasValue() ? this.columns.value().columns : [];
     const defined = new Map((this.draft.content()?.columns ?? []).map((entry) => [entry.column, entry]));
@@ -292,6 +300,11 @@ export class ColumnsPage {
     if (!taken) return;
     this.imported.set(true);
     await this.draft.reload();
+  }
+
+  /** The reading choices open with these tokens entered: there they are seen on the first rows, and confirmed. */
+  protected readAgain(missing: readonly string[]): void {
+    void this.router.navigate(['/models', this.modelId(), 'sample', this.sampleId(), 'reading'], { queryParams: { missing } });
   }
 
   protected change(entry: DefinedColumn): void {

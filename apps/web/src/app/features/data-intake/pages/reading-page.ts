@@ -109,6 +109,8 @@ export class ReadingPage {
 
   readonly modelId = input.required<string>();
   readonly sampleId = input.required<string>();
+  /** Tokens to enter as missing beside those that the file was read with. */
+  readonly missing = input<string | string[]>();
 
   protected readonly sample = oneSample(
     () => this.modelId(),
@@ -164,7 +166,7 @@ export class ReadingPage {
       if (!this.sample.hasValue() || !this.mayRead()) return;
       const reading = this.sample.value().reading;
       untracked(() => {
-        if (this.preview() === null && !this.looking.busy()) void this.look(reading ?? {});
+        if (this.preview() === null && !this.looking.busy()) void this.look(this.withTokens(reading));
       });
     });
     this.runs.finished
@@ -179,6 +181,12 @@ export class ReadingPage {
           void this.router.navigate(['/models', this.modelId(), 'sample', this.sampleId(), 'columns']);
         }
       });
+  }
+
+  private withTokens(reading: ReadingChoices | null): Partial<ReadingChoices> {
+    const tokens = [this.missing() ?? []].flat();
+    if (reading === null || tokens.length === 0) return reading ?? {};
+    return { ...reading, missing: [...new Set([...reading.missing, ...tokens])].slice(0, 50) };
   }
 
   protected async look(choices: Partial<ReadingChoices>): Promise<void> {

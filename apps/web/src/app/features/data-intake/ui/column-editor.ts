@@ -36,6 +36,11 @@ const roles: readonly ColumnRole[] = [
         @for (flag of profile().flags; track flag.code) {
           <li>
             <b>{{ names[flag.weight] }}</b> {{ flag.finding }}
+            @if (mayRead() && flag.values?.length) {
+              <button matButton type="button" (click)="readAgain.emit(flag.values ?? [])">
+                Read again with {{ tokens(flag.values) }} as missing
+              </button>
+            }
           </li>
         }
       </ul>
@@ -184,7 +189,11 @@ export class ColumnEditor {
   readonly profile = input.required<ColumnProfile>();
   readonly column = input<DefinedColumn | null>(null);
   readonly editable = input(false);
+  /** The file may be read again. */
+  readonly mayRead = input(false);
   readonly changed = output<DefinedColumn>();
+  /** The file is to be read again with these as missing tokens. */
+  readonly readAgain = output<readonly string[]>();
 
   protected readonly roles = roles;
   protected readonly names = { stop: 'Not used:', look: 'Look:', note: 'Note:' } as const;
@@ -199,6 +208,11 @@ export class ColumnEditor {
       .specialSuspects.filter(({ value }) => !known.has(value))
       .map((suspect) => ({ ...suspect, count: count(suspect.count) }));
   });
+
+  protected tokens(values: readonly string[] = []): string {
+    const shown = values.slice(0, 4).map((value) => (value.trim() === '' ? '(blank)' : value));
+    return shown.join(', ') + (values.length > 4 ? ` and ${count(values.length - 4)} more` : '');
+  }
 
   protected set(change: Partial<DefinedColumn>): void {
     const column = this.column();

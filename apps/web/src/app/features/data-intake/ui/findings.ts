@@ -93,6 +93,7 @@ const flagWords: Partial<Record<ColumnProfile['flags'][number]['code'], string>>
   'repeated-identifiers': 'repeated',
   'unreadable-numbers': 'no numbers',
   'numbers-as-text': 'numbers as text',
+  'mixed-numbers': 'mixed numbers',
   'doubtful-dates': 'dates?',
 };
 

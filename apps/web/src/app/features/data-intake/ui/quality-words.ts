@@ -28,6 +28,7 @@ const words: Partial<Record<QualityFlag['code'], string>> = {
   'repeated-identifiers': 'Repeated identifiers',
   'unreadable-numbers': 'Values that are no numbers',
   'numbers-as-text': 'Numbers as text',
+  'mixed-numbers': 'Numbers written in more than one way',
   'doubtful-dates': 'Doubtful dates',
 };
 
