@@ -244,5 +244,5 @@ describe('the description of the API', () => {
 
 // Last: the model that every route was asked about is left without its rows.
 describe('once the rows of the sample are erased', () => {
-  describeErasing(() => ({ server, world, modeller: visitors.get('modeller')!, validator: visitors.get('validator')!, admin: visitors.get('admin')! }));
+  describeErasing(() => ({ server, world, modeller: visitors.get('modeller')!, validator: visitors.get('validator')!, admin: visitors.get('admin')!, compliance: visitors.get('compliance')! }));
 });

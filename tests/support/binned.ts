@@ -1,5 +1,5 @@
 import type { Binning, CharacteristicDetail, CharacteristicList } from '@tallystone/contracts/binnings/schema';
-import type { DraftContent } from '@tallystone/contracts/samples/definition';
+import type { DefinedColumn, DraftContent } from '@tallystone/contracts/samples/definition';
 import type { Visitor } from './intake';
 
 /** A generator of its own, so that the file is the same on every machine (Park and Miller, CACM 31, 1988). */
@@ -51,6 +51,7 @@ export async function defineApplicants(
   visitor: Visitor,
   modelId: string,
   csv = applicantsWithRisk(),
+  gender: Partial<DefinedColumn> = {},
 ): Promise<{ definitionId: string; sampleId: string }> {
   const { path, id: sampleId } = await visitor.sample(modelId, csv);
   const { body, headers } = await visitor.get(`${path}/draft`).expect(200);
@@ -60,7 +61,7 @@ export async function defineApplicants(
     columns: draft.columns.map((column) => {
       if (column.column === 'utilisation')
         return { ...column, role: 'characteristic', special: [{ label: 'no bureau record', values: [-999] }] };
-      if (column.column === 'gender') return { ...column, role: 'characteristic', protected: true, citation: null };
+      if (column.column === 'gender') return { ...column, role: 'characteristic', protected: true, citation: null, ...gender };
       if (['age', 'home', 'region', 'branch_code'].includes(column.column))
         return { ...column, role: 'characteristic', reason: column.reason ?? 'as an example' };
       return column;

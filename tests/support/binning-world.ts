@@ -51,6 +51,7 @@ export interface RecordEntry {
   readonly actorName: string;
   readonly before: unknown;
   readonly after: unknown;
+  readonly detail: unknown;
   readonly reason: string | null;
 }
 

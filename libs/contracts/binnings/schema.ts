@@ -57,6 +57,8 @@ export type BinningList = z.infer<typeof BinningList>;
 export const Binning = BinningSummary.extend({
   constraints: AskedConstraints,
   outOfTime: OutOfTimeState,
+  /** How often its rows were opened, under which definitions: "opened 2 times, 1 of them under an earlier definition"; null where never. */
+  outOfTimeOpenings: z.string().nullable(),
   /** Columns with the role of a characteristic that no binning takes, with the reason. */
   barred: z.array(z.object({ column: z.string(), reason: z.string() })),
   /** Why the run ended without bins. */

@@ -3,7 +3,7 @@ import { recordEvent } from '../record/event';
 
 export const outOfTimeEvents = [
   recordEvent('out-of-time.opened', 'sample-definition', {
-    /** How often it had been opened before. */
+    /** How often these rows had been opened before, under whatever definition. */
     detail: z.strictObject({ earlier: z.int() }),
     reason: z.string(),
   }),

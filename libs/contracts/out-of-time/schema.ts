@@ -10,15 +10,27 @@ export const NewOpening = z.strictObject({
 });
 export type NewOpening = z.infer<typeof NewOpening>;
 
-/** One look under the cover. The first one opens it; later ones are kept as well, because each is a look with its own reason. */
-export const Opening = z.object({ id: z.uuid(), reason: z.string(), by: z.string(), at: z.string() });
+/** One look under the cover. The first one under a definition opens it; later ones are kept as well, because each is a look with its own reason. */
+export const Opening = z.object({
+  id: z.uuid(),
+  reason: z.string(),
+  by: z.string(),
+  at: z.string(),
+  /** Where it was opened: number of the sample, and of the definition within it. */
+  definitionId: z.uuid(),
+  sample: z.int(),
+  definition: z.int(),
+  /** Whether that is the definition asked about, or one confirmed before or after it over the same rows. */
+  under: z.enum(['this', 'earlier', 'later']),
+});
 export type Opening = z.infer<typeof Opening>;
 
 export const OutOfTimeCover = z
   .object({
     definitionId: z.uuid(),
+    /** Of this definition: each lifts its cover with a reason of its own. */
     state: OutOfTimeState,
-    /** In the order they happened. */
+    /** Under this definition and any other over the same rows, in the order they happened. */
     openings: z.array(Opening),
     abilities: z.array(z.enum(['open'])),
   })

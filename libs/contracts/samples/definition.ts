@@ -44,7 +44,7 @@ export const DefinedColumn = z.strictObject({
   kind: ColumnKind,
   role: ColumnRole,
   protected: z.boolean(),
-  /** The legal basis under which compliance permits a protected characteristic. */
+  /** The legal basis that the author proposes for a protected characteristic. It permits nothing: compliance does (permissions/). */
   citation: z.string().max(1000).nullable(),
   special: z.array(SpecialCode).max(50),
   /** Why it is not used, or why a flag was accepted. */

@@ -42,8 +42,9 @@ export function parseSpecification(input: unknown): { specification: Specificati
         ? section.whenAbsent
         : undefined;
     const parsed = section.schema.safeParse(value);
-    if (parsed.success) sound[key] = parsed.data;
-    else problems.push(...problemsOf(parsed.error.issues, [key]));
+    if (parsed.success) {
+      if (parsed.data !== undefined) sound[key] = parsed.data;
+    } else problems.push(...problemsOf(parsed.error.issues, [key]));
   }
   for (const finding of acrossSections(sound)) {
     problems.push({ code: finding.code, message: finding.message, where: { path: pathText(finding.path) } });

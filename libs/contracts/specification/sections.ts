@@ -4,6 +4,7 @@ import { alternative, checked, has, repeated } from './issues';
 import { columnName, finite, isoDate, seed, texts } from './primitives';
 import type {
   Bands,
+  ColumnPermission,
   ColumnTest,
   DataReading,
   DeclinedTreatment,
@@ -266,6 +267,12 @@ const reasons: z.ZodType<Reasons, unknown> = z.strictObject({
 
 const weight = z.strictObject({ column: columnName });
 const priorCorrection = z.strictObject({ populationBadRate: finite.gt(0).lt(1) });
+const permission: z.ZodType<ColumnPermission, unknown> = z.strictObject({
+  column: columnName,
+  citation: z.string().min(1),
+  by: z.string().min(1),
+  at: z.iso.datetime({ offset: true }),
+});
 const recalibration = z.strictObject({ on: z.literal('holdOut') });
 
 /** `optional: true` = the key may be absent; the section's schema then sees `whenAbsent`. */
@@ -289,4 +296,6 @@ export const sections = {
   psi: { schema: z.strictObject({ smoothing: finite.nonnegative().default(0) }), required: false, whenAbsent: {} },
   reasons: { schema: reasons, required: false, whenAbsent: {} },
   cutOff: { schema: finite.nullable(), required: false, whenAbsent: null },
+  // No default is written in: a specification from before this key keeps its fingerprint.
+  permissions: { schema: z.array(permission).min(1).optional(), required: false },
 } as const;

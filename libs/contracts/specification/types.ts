@@ -213,6 +213,14 @@ export interface Reasons {
   texts: Record<string, string>;
 }
 
+/** `at`: ISO 8601. */
+export interface ColumnPermission {
+  column: string;
+  citation: string;
+  by: string;
+  at: string;
+}
+
 export interface Specification {
   format: 'tallystone-specification';
   formatVersion: 1;
@@ -233,6 +241,8 @@ export interface Specification {
   psi: { smoothing: number };
   reasons: Reasons;
   cutOff: number | null;
+  /** Protected characteristics that compliance permitted, as they stood when the version was frozen. An optional extension of the format; replaying does not depend on it. */
+  permissions?: ColumnPermission[] | undefined;
 }
 
 /** One thing that is wrong, with its place. `where.path` is a JSON path such as `characteristics[2].edges`. */

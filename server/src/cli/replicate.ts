@@ -1,5 +1,6 @@
 import { readFile, writeFile } from 'node:fs/promises';
 import { parseArgs } from 'node:util';
+import { permissionLines } from '@tallystone/contracts/permissions/permission-words';
 import { resultSchema } from '@tallystone/contracts/result/schema';
 import type { Result } from '@tallystone/contracts/result/types';
 import { parseSpecification } from '@tallystone/contracts/specification/schema';
@@ -96,6 +97,7 @@ async function run(args: Arguments): Promise<number> {
   const json = await readJson(args.specification, 'specification');
   const specification = readSpecification(json);
   const expected = args.expect === undefined ? null : await readExpected(args.expect);
+  for (const line of permissionLines(specification)) process.stdout.write(`${oneLine(line)}\n`);
   const { source, sha256, rows } = await readForReplay(args.data, specification);
   const replayed = (method: Method): Result =>
     replay({ specification, specificationSha256: fingerprint(json), dataSha256: sha256, source, version, method }).result;

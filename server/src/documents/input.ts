@@ -167,6 +167,25 @@ export const ColumnQuality = z.strictObject({
   flags: z.array(z.string()),
 });
 
+/** Protected columns as they stood when the version was frozen: what compliance permitted or withdrew, and what is flagged no longer. */
+export const DocumentedProtection = z.strictObject({
+  evidence: cited,
+  acts: z.array(
+    z.strictObject({
+      column: z.string(),
+      act: z.enum(['permitted', 'withdrawn']),
+      citation: z.string(),
+      reason: z.string(),
+      by: z.string(),
+      at: time,
+      /** Whether it is the permission that held. */
+      holds: z.boolean(),
+    }),
+  ),
+  /** Flagged protected by an earlier definition of the model, and not by the version's. */
+  unflagged: z.array(z.strictObject({ column: z.string(), role: z.string(), sample: z.int(), definition: z.int(), reason: z.string().nullable() })),
+});
+
 /** A flag of the quality report, with the answer that stood when the version was frozen. */
 export const RaisedFlag = z.strictObject({
   /** Null for what concerns the file as a whole. */
@@ -232,11 +251,22 @@ export const ClassedCharacteristic = z.strictObject({
   edits: z.array(z.strictObject({ at: time, by: z.string(), edit: z.string(), reason: z.string().nullable() })),
 });
 
-/** Each time somebody lifted the cover from the out-of-time figures. */
+/** Each time somebody lifted the cover from the out-of-time figures, under whatever definition of the same rows. */
 export const OutOfTime = z.strictObject({
   covered: z.boolean(),
   openings: z.array(
-    z.strictObject({ at: time, by: z.string(), reason: z.string(), beforeFreezing: z.boolean(), sequence: z.int().nullable() }),
+    z.strictObject({
+      at: time,
+      by: z.string(),
+      reason: z.string(),
+      beforeFreezing: z.boolean(),
+      /** The version's own definition, or one confirmed before or after it over the same rows. */
+      under: z.enum(['this', 'earlier', 'later']),
+      /** Number of the sample, and of the definition within it. */
+      sample: z.int(),
+      definition: z.int(),
+      sequence: z.int().nullable(),
+    }),
   ),
 });
 
@@ -379,6 +409,8 @@ const parts = z.strictObject({
   /** Null where no dictionary was written. */
   dictionary: z.strictObject({ evidence: cited, lines: z.array(DictionaryLine) }).nullable(),
   quality: z.strictObject({ evidence: cited, rows: count, columns: z.array(ColumnQuality) }).nullable(),
+  /** Null in versions frozen before permissions were kept with them. */
+  protection: DocumentedProtection.nullable(),
   /** Null where no quality report was made. */
   qualityFlags: z.strictObject({ evidence: cited, madeAt: time, flags: z.array(RaisedFlag) }).nullable(),
   balance: Balance.nullable(),

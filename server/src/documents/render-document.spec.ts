@@ -191,7 +191,8 @@ describe('the document of a complete version', () => {
   it('prints the cautions and how often the out-of-time figures were opened', () => {
     expect(words).toContain('aids to judgement');
     expect(words).toContain('Qualified legal, compliance and validation staff decide');
-    expect(words).toContain('opened 1 time before freezing');
+    expect(words).toContain('Before freezing, the out-of-time figures were opened 1 time, under an earlier definition; after it, not at all.');
+    expect(words).toMatch(/1 of sample 1, earlier +yes/);
     expect(words).toContain('its deviance is optimistic');
   });
 
@@ -221,6 +222,13 @@ describe('the document of a complete version', () => {
     expect(words).toContain('Harbour 14 000 7 800 700 8.2 % 7.7 % to 8.8 % 2 550 214 0.781');
     expect(words).toContain('Islands 73 few few few – 8 few –');
     expect(words).toContain('sex is protected: what it splits is not printed here');
+  });
+
+  it('says who permitted a protected column with which citation, what was withdrawn, and what is flagged no longer', () => {
+    expect(words).toMatch(/Protected columns: Employment \[E-1\]\. Employment stands among the characteristics, by permission of compliance alone\./i);
+    expect(words).toMatch(/permitted, holds Section 14 of the invented/);
+    expect(words).toContain('Section 4 is about deposits.');
+    expect(words).toMatch(/flagged no longer: Region \(characteristic; flagged by definition 1 of sample 1; no reason is given\)/i);
   });
 
   it('prints the flags of the quality report with their answers, and counts alone those of columns that take no part', () => {
@@ -315,6 +323,7 @@ describe('a document with much missing', () => {
       balance: null,
       segments: null,
       classing: null,
+      protection: null,
       outOfTime: { covered: true, openings: [] },
       penaltyChoice: null,
       stability: null,

@@ -5,6 +5,7 @@ import { healthRoutes } from './health/index';
 import { binningRoutes } from './binnings/index';
 import { outOfTimeRoutes } from './out-of-time/index';
 import { invitationRoutes } from './invitations/index';
+import { permissionRoutes } from './permissions/index';
 import { peopleRoutes } from './people/index';
 import { recordRoutes } from './record/index';
 import { runRoutes } from './runs/index';
@@ -22,7 +23,7 @@ export function allRoutes(): Route[] {
   const routes: Route[] = [...sessionRoutes, ...setUpRoutes, ...invitationRoutes, ...peopleRoutes, ...recordRoutes, ...runRoutes];
   routes.push(...modelRoutes(), ...sampleRoutes());
   routes.push(...fitRoutes, ...comparisonRoutes, ...scorecardRoutes, ...versionRoutes, ...validationRoutes, ...documentRoutes);
-  routes.push(...outOfTimeRoutes, ...binningRoutes);
+  routes.push(...outOfTimeRoutes, ...permissionRoutes, ...binningRoutes);
   routes.push(...healthRoutes(() => routes));
   return routes;
 }

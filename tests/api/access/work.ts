@@ -1,4 +1,4 @@
-import { type AccessRow, developsModel, readsModel } from './access';
+import { type AccessRow, developsModel, everyRole, readsModel } from './access';
 
 const binning = '/api/binnings/:binningId';
 
@@ -19,6 +19,13 @@ export const binningRows: readonly AccessRow[] = [
   readsModel(`GET ${binning}/edits`),
   readsModel('GET /api/sample-definitions/:definitionId/out-of-time'),
   developsModel('POST /api/sample-definitions/:definitionId/out-of-time'),
+  readsModel('GET /api/sample-definitions/:definitionId/protected-columns'),
+  {
+    route: 'POST /api/sample-definitions/:definitionId/protected-columns',
+    own: { modeller: 403, validator: 403, compliance: 'yes', admin: 404, auditor: 403 },
+    another: { modeller: 404, validator: 403, compliance: 'yes', admin: 404, auditor: 403 },
+    nonexistent: everyRole(404),
+  },
 ];
 
 export const fitRows: readonly AccessRow[] = [

@@ -85,18 +85,8 @@ export function writeData(writer: Writer): void {
         : `${plural(flagged.length, 'column')} of ${whole(quality.columns.length)} ${flagged.length === 1 ? 'is' : 'are'} flagged.`,
     );
     writeSpecialCodes(writer);
-    const barred = quality.columns.filter((column) => column.protected).map((column) => writer.label(column.column));
-    const used = new Set(input.specification.characteristics.map((characteristic) => characteristic.column));
-    const inFit = quality.columns.filter((column) => column.protected && used.has(column.column));
-    if (barred.length > 0) {
-      writer.text(
-        `Protected columns: ${barred.join(', ')} ${writer.cite(quality.evidence)}. ` +
-          (inFit.length === 0
-            ? 'None of them is among the characteristics of the specification.'
-            : `${inFit.map((column) => writer.label(column.column)).join(', ')} stands among the characteristics: see the lender’s citation that permits it.`),
-      );
-    }
   }
+  writeProtection(writer);
   writeFlags(writer);
   writer.authorTexts(6, ['Suitability of the sources']);
 }
@@ -125,6 +115,44 @@ function writeDictionary(writer: Writer): void {
       ? 'Every column of the file is described.'
       : `${plural(without.length, 'column')} ${without.length === 1 ? 'is' : 'are'} not described and stand${without.length === 1 ? 's' : ''} under ${without.length === 1 ? 'its heading' : 'their headings'}.`,
   );
+}
+
+/** What is protected, who permitted what of it with which citation, and what is flagged no longer. */
+function writeProtection(writer: Writer): void {
+  const { quality, protection, specification } = writer.input;
+  const flagged = quality?.columns.filter((column) => column.protected) ?? [];
+  if (flagged.length === 0 && !protection?.unflagged.length) return;
+  writer.heading('Protected columns');
+  if (quality !== null && flagged.length > 0) {
+    const used = new Set(specification.characteristics.map(({ column }) => column));
+    const inFit = flagged.filter(({ column }) => used.has(column)).map(({ column }) => writer.label(column));
+    writer.text(
+      `Protected columns: ${flagged.map(({ column }) => writer.label(column)).join(', ')} ${writer.cite(quality.evidence)}. ` +
+        (inFit.length === 0
+          ? 'None of them is among the characteristics of the specification.'
+          : `${inFit.join(', ')} ${inFit.length === 1 ? 'stands' : 'stand'} among the characteristics, by permission of compliance alone.`),
+    );
+  }
+  if (protection === null) {
+    writer.notEvidenced('Who permitted a protected column');
+    return;
+  }
+  if (protection.acts.length === 0) writer.text(`Compliance has permitted none ${writer.cite(protection.evidence)}.`);
+  else {
+    writer.table('What compliance permitted and withdrew', protection.evidence, {
+      columns: [{ title: 'Column', grow: 1 }, { title: 'Act' }, { title: 'Citation', grow: 2 }, { title: 'Reason', grow: 2 }, { title: 'By', grow: 1 }],
+      rows: protection.acts.map(({ column, act, citation, reason, by, at, holds }) => ({
+        cells: [writer.label(column), holds ? `${act}, holds` : act, citation, reason, `${by}, ${timeText(at)}`],
+      })),
+    });
+  }
+  if (protection.unflagged.length > 0) {
+    writer.caution(
+      `Protected in an earlier definition of this model, and flagged no longer: ${protection.unflagged
+        .map(({ column, role, sample, definition, reason }) => `${writer.label(column)} (${role}; flagged by definition ${definition} of sample ${sample}${reason === null ? '; no reason is given' : `; ${reason}`})`)
+        .join(', ')}.`,
+    );
+  }
 }
 
 /** What the quality report raised of columns that take part, and how each was answered. */

@@ -1,3 +1,4 @@
+import { openingWords } from '@tallystone/contracts/out-of-time/opening-words';
 import type { ResultMetrics } from '@tallystone/contracts/result/types';
 import { rateInterval } from '@tallystone/numeric/metrics/intervals';
 import { drawCalibration } from '../charts/calibration';
@@ -83,7 +84,8 @@ function writeOpenings(writer: Writer): void {
   writer.text(
     outOfTime.openings.length === 0
       ? 'The out-of-time figures were never opened before freezing.'
-      : `The out-of-time figures were opened ${plural(before.length, 'time')} before freezing and ${plural(outOfTime.openings.length - before.length, 'time')} after.`,
+      : `Before freezing, the out-of-time figures were ${openingWords(before) ?? 'never opened'}; after it, ${openingWords(outOfTime.openings.filter((opening) => !opening.beforeFreezing)) ?? 'not at all'}. ` +
+          'An opening under any definition of the same rows counts.',
   );
   if (outOfTime.covered) writer.caution('Out-of-time figures are covered and are not printed.');
   if (outOfTime.openings.length > 0) {
@@ -92,6 +94,7 @@ function writeOpenings(writer: Writer): void {
         { title: 'When' },
         { title: 'Who', grow: 1 },
         { title: 'Why', grow: 3 },
+        { title: 'Definition' },
         { title: 'Before freezing' },
         { title: 'Record', align: 'right' },
       ],
@@ -100,6 +103,7 @@ function writeOpenings(writer: Writer): void {
           timeText(opening.at),
           opening.by,
           opening.reason,
+          `${opening.definition} of sample ${opening.sample}, ${opening.under === 'this' ? 'this one' : opening.under}`,
           opening.beforeFreezing ? 'yes' : 'no',
           opening.sequence === null ? '–' : `act ${opening.sequence}`,
         ],

@@ -2,6 +2,7 @@ import { randomUUID } from 'node:crypto';
 import type { Sequelize, Transaction } from 'sequelize';
 import type { RunContext } from '../../jobs/handler';
 import { Binning, BinningCharacteristic } from '../../models/binning';
+import { permittedOn } from '../permissions/permitted';
 import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
 import { findDefinition, loadPrepared } from '../samples/definitions';
@@ -27,7 +28,7 @@ export async function classBinning(
   const definition = await findDefinition(sequelize, binning.definitionId);
   if (!definition) throw new Error(`Binning ${binningId} has no sample definition`);
   const counted = await loadPrepared(sequelize, definition.id);
-  const { taken } = splitColumns(definition.content.columns);
+  const { taken } = splitColumns(definition.content.columns, await permittedOn(sequelize, definition.id));
   const earlier = await readEarlier(sequelize, binning.fromBinningId);
   progress('Classing characteristics', 0);
   const classed = await classCharacteristics(

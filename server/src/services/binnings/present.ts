@@ -6,11 +6,13 @@ import type {
   CharacteristicSummary,
 } from '@tallystone/contracts/binnings/schema';
 import type { OutOfTimeState } from '@tallystone/contracts/out-of-time/schema';
+import { openingWords } from '@tallystone/contracts/out-of-time/opening-words';
 import type { Sequelize, Transaction } from 'sequelize';
 import { binsOfEntry } from '../../classing/definition';
 import type { Actor } from '../../models/person';
 import { abilitiesOnBinning, canEditBinning } from '../../policies/binnings';
 import { outOfTimeState } from '../out-of-time/cover';
+import { openingsOver } from '../out-of-time/openings';
 import { groupsOf } from './correlations';
 import { editsInEffect, editsNotCarried, presentEdit } from './edits';
 import type { FoundBinning } from './find-binning';
@@ -39,6 +41,7 @@ export async function presentBinning(
     barred: binning.barred,
     problem: binning.problem,
     outOfTime: await outOfTimeState(sequelize, binning.definitionId, tx),
+    outOfTimeOpenings: openingWords(await openingsOver(sequelize, binning.definitionId, tx)),
     abilities: abilitiesOnBinning(person, binning),
   };
 }

@@ -9,6 +9,7 @@ import { Binning } from '../../models/binning';
 import type { Actor } from '../../models/person';
 import { invalidField } from '../../problems/problem';
 import type { FoundModel } from '../models/find-model';
+import { permittedOn } from '../permissions/permitted';
 import { appendRecord } from '../record/append';
 import { refuseErased } from '../../storage/erasure';
 import { findDefinition } from '../samples/definitions';
@@ -39,7 +40,7 @@ export async function startBinning(
     throw invalidField('definitionId', 'no-such-definition', 'This model has no such confirmed sample. Choose another.');
   }
   await refuseErased(context.sequelize, { definitionId: definition.id }, tx);
-  const { taken, barred } = splitColumns(definition.content.columns);
+  const { taken, barred } = splitColumns(definition.content.columns, await permittedOn(context.sequelize, definition.id, tx));
   if (taken.length === 0) {
     throw invalidField(
       'definitionId',

@@ -1,4 +1,6 @@
 import type { FitPath, FitSettings } from '@tallystone/contracts/fits/schema';
+import type { Opening } from '@tallystone/contracts/out-of-time/schema';
+import type { Protection } from '@tallystone/contracts/permissions/schema';
 import type { CharacteristicBalance } from '@tallystone/contracts/samples/balance';
 import { noLongerReplicable } from '@tallystone/contracts/samples/erased-words';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
@@ -45,6 +47,8 @@ interface SampleEvidence {
   labels?: ColumnLabels['labels'];
   /** Absent in versions frozen before they were kept with it, null where they were not made. */
   balance?: CharacteristicBalance[] | null;
+  /** Absent in versions frozen before permissions were kept with them. */
+  protection?: Protection;
   segments?: SegmentGroups[] | null;
 }
 interface ClassingEvidence {
@@ -188,6 +192,7 @@ export async function gatherDocument(context: Context, versionId: string, person
       rows: sample.content.rows,
       columns: sample.content.quality.map(({ name, kind, profile }) => qualityOf(name, kind, profile, sample.content)),
     },
+    protection: sample && protectionOf(sample),
     qualityFlags: sample && flagsOf(sample),
     balance: sample?.content.balance ? { evidence: sample.number, characteristics: sample.content.balance } : null,
     segments: sample && segmentsOf(sample, performance),
@@ -208,12 +213,15 @@ export async function gatherDocument(context: Context, versionId: string, person
     },
     outOfTime: {
       covered: cover.state === 'covered',
-      openings: cover.openings.map(({ at, by, reason }) => ({
+      openings: cover.openings.map(({ at, by, reason, under, ...opening }) => ({
         at,
         by,
         reason,
         beforeFreezing: Date.parse(at) < version.frozenAt.getTime(),
-        sequence: history.find((line) => line.act === 'out-of-time.opened' && line.reason === reason)?.sequence ?? null,
+        under,
+        sample: opening.sample,
+        definition: opening.definition,
+        sequence: openedAt(history, cover.openings, opening),
       })),
     },
     penaltyChoice: fit && { by: fit.content.choice.by, at: fit.content.choice.at, rule: fit.content.choice.rule, reason: fit.content.choice.reason || null },
@@ -258,6 +266,24 @@ const recordActions = {
 function recorded(history: readonly HistoryLine[], version: FoundVersion, entry: FoundVersion['acts'][number]): number | null {
   const place = version.acts.filter(({ act }) => act === entry.act).indexOf(entry);
   return history.filter((line) => line.entityId === version.id && line.act === recordActions[entry.act])[place]?.sequence ?? null;
+}
+
+/** The place of an opening in the record: those under one definition stand there in the order they happened. */
+function openedAt(history: readonly HistoryLine[], openings: readonly Opening[], opening: Pick<Opening, 'id' | 'definitionId'>): number | null {
+  const place = openings.filter(({ definitionId }) => definitionId === opening.definitionId).findIndex(({ id }) => id === opening.id);
+  return history.filter((line) => line.act === 'out-of-time.opened' && line.entityId === opening.definitionId)[place]?.sequence ?? null;
+}
+
+/** What compliance permitted or withdrew until the version was frozen. */
+function protectionOf({ content, number }: Numbered<SampleEvidence>): DocumentInput['protection'] {
+  if (!content.protection) return null;
+  const { columns, acts: done, unflagged } = content.protection;
+  const holding = new Set(columns.map(({ permission }) => permission?.id));
+  return {
+    evidence: number,
+    acts: done.map(({ id, ...entry }) => ({ ...entry, holds: holding.has(id) })),
+    unflagged,
+  };
 }
 
 const interval = (lower: number | null, upper: number | null): { lower: number; upper: number } | null => (lower === null || upper === null ? null : { lower, upper });

@@ -1,5 +1,6 @@
 import { randomUUID } from 'node:crypto';
 import { type FitSettings, noInference } from '@tallystone/contracts/fits/schema';
+import { barredWords } from '@tallystone/contracts/permissions/permission-words';
 import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import { problemCodes } from '@tallystone/contracts/problems/codes';
 import canonicalize from 'canonicalize';
@@ -15,6 +16,7 @@ import { rowsErased } from '../../problems/rows-erased';
 import { binningCharacteristics } from '../binnings/characteristics-of';
 import { findBinning } from '../binnings/find-binning';
 import type { FoundModel } from '../models/find-model';
+import { permittedOn } from '../permissions/permitted';
 import { appendRecord } from '../record/append';
 import { findDefinition } from '../samples/definitions';
 import { buildSpecification, canonical } from '../specifications/build-specification';
@@ -39,7 +41,8 @@ export async function startFit(
   const definition = await findDefinition(context.sequelize, binning.definitionId, tx);
   if (!definition) throw new Error(`Binning ${binning.id} has no sample definition`);
   const included = await binningCharacteristics(context.sequelize, binning.id, tx);
-  const barred = new Set(definition.content.columns.filter((column) => column.protected && !column.citation).map(({ column }) => column));
+  const permitted = await permittedOn(context.sequelize, definition.id, tx);
+  const barred = new Set(definition.content.columns.filter((column) => column.protected && !permitted.has(column.column)).map(({ column }) => column));
   const problems = [
     ...problemsOf(settings, included.map(({ definition: entry }) => entry.column), barred),
     ...problemsOfInference(settings, definition.content.declined, definition.counts.declined),
@@ -139,7 +142,7 @@ function problemsOf(settings: FitSettings, columns: readonly string[], barred: R
   const taking = columns.filter((column) => !leftOut.has(column));
   if (taking.length === 0) problems.push({ message: 'No characteristic is left in the fit. Take at least one in.', where: { field: 'settings.characteristics' } });
   for (const column of taking) {
-    if (barred.has(column)) problems.push({ message: `"${column}" is protected and barred from any fit unless compliance permits it with a citation.`, where: { column } });
+    if (barred.has(column)) problems.push({ message: barredWords(column), where: { column } });
   }
   return problems;
 }

@@ -7,6 +7,7 @@ import { conflict } from '../../problems/problem';
 import { tombstoneOf } from '../../storage/erasure';
 import { type FoundModel, findModel } from '../models/find-model';
 import { appendRecord } from '../record/append';
+import { openingsOver } from './openings';
 
 export { outOfTimeOpened, outOfTimeState } from './state';
 
@@ -40,18 +41,12 @@ export async function readCover(
   definition: CoveredDefinition,
   tx: Transaction | null = null,
 ): Promise<OutOfTimeCover> {
-  const openings = await rows<{ id: string; reason: string; by: string; at: Date }>(
-    sequelize,
-    `SELECT o.id, o.reason, p.name AS by, o.opened_at AS at FROM out_of_time_openings o JOIN people p ON p.id = o.opened_by
-      WHERE o.definition_id = $1 ORDER BY o.number`,
-    [definition.id],
-    tx,
-  );
-  const state = definition.outOfTimeRows === 0 ? 'none' : openings.length > 0 ? 'opened' : 'covered';
+  const openings = await openingsOver(sequelize, definition.id, tx);
+  const state = definition.outOfTimeRows === 0 ? 'none' : openings.some(({ under }) => under === 'this') ? 'opened' : 'covered';
   return {
     definitionId: definition.id,
     state,
-    openings: openings.map((opening) => ({ ...opening, at: opening.at.toISOString() })),
+    openings,
     abilities: state !== 'none' && canOpenOutOfTime(person, definition).allowed ? ['open'] : [],
   };
 }
@@ -71,8 +66,9 @@ export async function openOutOfTime(
   if (definition.outOfTimeRows === 0)
     throw conflict('no-out-of-time', 'This sample has no out-of-time rows: there is nothing to open.');
   // One look at a time, so that each knows how many there were before.
-  await rows(sequelize, 'SELECT pg_advisory_xact_lock(hashtext($1))', [`out-of-time ${definition.id}`], tx);
-  const [made] = await rows<{ number: number }>(
+  await rows(sequelize, 'SELECT pg_advisory_xact_lock(hashtext($1))', [`out-of-time ${definition.model.id}`], tx);
+  const before = await openingsOver(sequelize, definition.id, tx);
+  await rows(
     sequelize,
     `INSERT INTO out_of_time_openings (definition_id, number, reason, opened_by)
      SELECT $1, count(*) + 1, $2, $3 FROM out_of_time_openings WHERE definition_id = $1 RETURNING number`,
@@ -85,7 +81,7 @@ export async function openOutOfTime(
     entity: 'sample-definition',
     entityId: definition.id,
     modelId: definition.model.id,
-    detail: { earlier: made.number - 1 },
+    detail: { earlier: before.length },
     reason,
   });
 }

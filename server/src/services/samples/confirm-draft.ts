@@ -10,6 +10,7 @@ import type { Run } from '../../models/run';
 import { Sample, SampleDefinition } from '../../models/sample';
 import { Problem, conflict, invalid } from '../../problems/problem';
 import { storeAssignment } from '../../storage/assignmentStore';
+import { unflaggedBy } from '../permissions/unflagged';
 import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
 import { balanceOf, storeBalance } from './balance';
@@ -139,6 +140,18 @@ export async function confirmDefinition(payload: { sampleId: string; revision: n
         ...(names.length === 0 ? {} : { hashed: names }),
       },
     });
+    const unflagged = await unflaggedBy(context.sequelize, id, tx);
+    if (unflagged.length > 0) {
+      await appendRecord(tx, {
+        actor: await actorOf(run.run.personId, tx),
+        action: 'protected-column.unflagged',
+        entity: 'sample-definition',
+        entityId: id,
+        modelId: sample.modelId,
+        after: { columns: unflagged.map(({ column, role, sample: of, definition }) => ({ column, role, sample: of, definition })) },
+        reason: unflagged.flatMap(({ column, reason }) => (reason ? [`${column}: ${reason}`] : [])).join('; ') || undefined,
+      });
+    }
     // Nobody waits for the report, so it is a run of its own.
     await startReport(context, tx, { definitionId: id, modelId: sample.modelId, person: { id: run.run.personId } });
     return { definitionId: id, number };

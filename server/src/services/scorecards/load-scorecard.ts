@@ -5,6 +5,7 @@ import { Fit, FittedPath } from '../../models/fit';
 import { ScorecardRow } from '../../models/scorecard';
 import { conflict } from '../../problems/problem';
 import type { FoundFit } from '../fits/find-fit';
+import { permissionsIn, permittedOn } from '../permissions/permitted';
 import { labelOf, labelsOf } from '../samples/dictionary/find';
 import { defaultBands, defaultReasons, defaultScaling, withChoice } from '../specifications/build-specification';
 
@@ -50,7 +51,8 @@ export async function loadScorecard(sequelize: Sequelize, fit: FoundFit, tx: Tra
   const { labels } = await labelsOf(sequelize, fit.definitionId, tx);
   const settings = saved?.settings ?? defaultSettings;
   const chosen = withChoice(JSON.parse(row.specification) as Specification, { rule: choice.rule, index: choice.place }, path.lambdas);
-  const specification: Specification = { ...chosen, ...settings };
+  const permissions = permissionsIn(chosen, await permittedOn(sequelize, fit.definitionId, tx));
+  const specification: Specification = { ...chosen, ...settings, ...(permissions.length > 0 && { permissions }) };
   const coefficients = path.coefficients[choice.place];
   const kept = specification.characteristics.flatMap((entry, j): KeptCharacteristic[] => {
     if (coefficients[j] === 0 || entry.coding === 'linear') return [];

@@ -1,7 +1,8 @@
 import { randomUUID } from 'node:crypto';
 import { problemCodes } from '@tallystone/contracts/problems/codes';
+import { barredWords } from '@tallystone/contracts/permissions/permission-words';
 import type { ProblemItem } from '@tallystone/contracts/problems/schema';
-import type { Transaction } from 'sequelize';
+import type { Sequelize, Transaction } from 'sequelize';
 import { version as codeVersion } from '../../../../package.json';
 import type { Context } from '../../context';
 import { rows } from '../../database/sql';
@@ -14,6 +15,7 @@ import { rowsErased } from '../../problems/rows-erased';
 import type { FreezeAnswer } from '../../threads/freeze-version';
 import { runInThread } from '../../threads/run-in-thread';
 import { type FoundFit, findFit } from '../fits/find-fit';
+import { permissionsIn, permittedOn } from '../permissions/permitted';
 import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
 import { type FoundDefinition, findDefinition } from '../samples/definitions';
@@ -35,9 +37,26 @@ export async function obstaclesToFreezing(context: Pick<Context, 'sequelize'>, f
   const beside = fit.acceptsOnlyId === null ? null : await findFit(context.sequelize, fit.acceptsOnlyId, tx);
   if (beside && beside.state !== 'ready')
     obstacle('no-accepts-only', `“${beside.name}” is ${beside.state}: a fit with declined applicants is frozen with the accepts-only fit beside it.`);
+  for (const column of await barredIn(context.sequelize, fit, tx)) obstacle('barred-field', barredWords(column));
   const [found] = await rows<{ revision: number }>(context.sequelize, 'SELECT revision FROM scorecards WHERE fit_id = $1', [fit.id], tx);
   if (!found) obstacle('no-scorecard', 'The scorecard of this fit was never saved: state scaling and reason texts first.');
   return obstacles;
+}
+
+/** Characteristics of the fit that are protected and not permitted, or no longer. */
+async function barredIn(sequelize: Sequelize, fit: FoundFit, tx: Transaction | null): Promise<string[]> {
+  const permitted = await permittedOn(sequelize, fit.definitionId, tx);
+  const taken = await rows<{ column: string }>(
+    sequelize,
+    `SELECT entry ->> 'column' AS "column"
+       FROM fits f JOIN sample_definitions d ON d.id = f.definition_id
+       CROSS JOIN LATERAL jsonb_array_elements(f.specification::jsonb -> 'characteristics') entry
+       CROSS JOIN LATERAL jsonb_array_elements(d.content -> 'columns') defined
+      WHERE f.id = $1 AND defined ->> 'column' = entry ->> 'column' AND (defined ->> 'protected')::boolean`,
+    [fit.id],
+    tx,
+  );
+  return taken.map(({ column }) => column).filter((column) => !permitted.has(column));
 }
 
 /** @throws Problem 409 with every obstacle */
@@ -125,6 +144,10 @@ export async function writeVersion(
 ): Promise<{ versionId: string; number: number }> {
   const { sequelize } = context;
   await rows(sequelize, 'SELECT id FROM models WHERE id = $1 FOR UPDATE', [fit.modelId], tx);
+  // Under the lock that a permission is given and withdrawn under.
+  const permissions = permissionsIn(loaded.specification, await permittedOn(sequelize, fit.definitionId, tx));
+  if (canonical(permissions).sha256 !== canonical(loaded.specification.permissions ?? []).sha256)
+    throw conflict('permissions-changed', 'What compliance permits of the protected columns has changed meanwhile. Look at it and freeze again.');
   const [{ next }] = await rows<{ next: number }>(sequelize, 'SELECT coalesce(max(number), 0) + 1 AS next FROM versions WHERE model_id = $1', [fit.modelId], tx);
   const result = canonical(frozen.result);
   const fingerprint = canonical({ dataSha256, specificationSha256: specification.sha256, codeVersion, resultSha256: result.sha256 }).sha256;

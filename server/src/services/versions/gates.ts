@@ -1,10 +1,12 @@
 import { noLongerReplicable } from '@tallystone/contracts/samples/erased-words';
+import { barredWords, permissionLines } from '@tallystone/contracts/permissions/permission-words';
 import type { Result } from '@tallystone/contracts/result/types';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import type { Gate, GateItem, VersionTextKey, VersionTexts } from '@tallystone/contracts/versions/schema';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
 import { editsWithoutReason } from '../binnings/characteristics-of';
+import { permittedOn } from '../permissions/permitted';
 import { findDefinition } from '../samples/definitions';
 import type { FoundVersion } from './find-version';
 import { specialsMapped } from './special-codes';
@@ -66,8 +68,9 @@ async function submitItems(sequelize: Sequelize, { version, specification, resul
   const definition = await findDefinition(sequelize, version.definitionId, tx);
   const edits = await editsWithoutReason(sequelize, version.binningId, tx);
   const counted = reconciled(result, definition?.rows ?? 0);
+  const permitted = await permittedOn(sequelize, version.definitionId, tx);
   const barred = (definition?.content.columns ?? []).filter(
-    (column) => column.protected && !column.citation && specification.characteristics.some((entry) => entry.column === column.column),
+    (column) => column.protected && !permitted.has(column.column) && specification.characteristics.some((entry) => entry.column === column.column),
   );
   const kept = result.characteristics.filter((entry) => entry.coefficient !== 0);
   const untold = kept.filter(({ column }) => !specification.reasons.texts[column]?.trim());
@@ -97,7 +100,7 @@ async function submitItems(sequelize: Sequelize, { version, specification, resul
       code: 'no-barred-field',
       label: 'No barred field in the fit',
       holds: barred.length === 0,
-      detail: barred.length === 0 ? 'No protected column takes part.' : `Barred, and in the fit: ${barred.map(({ column }) => column).join(', ')}.`,
+      detail: barred.length === 0 ? permittedDetail(specification) : barred.map(({ column }) => barredWords(column)).join(' '),
       path: `${model}/fit/${version.fitId}`,
     },
     {
@@ -134,6 +137,12 @@ export function reconciled({ counts }: Pick<Result, 'counts'>, fileRows: number)
   const sum = excluded + counts.declined + parts;
   const words = `${excluded} excluded + ${counts.declined} declined + ${parts} in the partitions = ${sum} of ${fileRows} rows`;
   return sum === fileRows ? { holds: true, detail: `${words}.` } : { holds: false, detail: `${words}: ${Math.abs(fileRows - sum)} rows are not accounted for.` };
+}
+
+/** Those frozen with the version: what the second signature is asked to stand for. */
+function permittedDetail(specification: Specification): string {
+  const lines = permissionLines(specification);
+  return lines.length === 0 ? 'No protected column takes part.' : `${lines.join('. ')}.`;
 }
 
 function concludeItems({ version, replications, matchingReplications }: Looked): GateItem[] {

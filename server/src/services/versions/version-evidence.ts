@@ -1,5 +1,6 @@
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
+import { protectionOf } from '../permissions/protection';
 import { entriesOf } from '../samples/dictionary/find';
 import { reportOf, segmentsOf } from '../samples/quality/read-report';
 import { codeVersionFacts } from './code-version';
@@ -64,6 +65,7 @@ export async function versionEvidence(
         dictionary: await entriesOf(sequelize, definition.id, tx),
         balance: balance.at(0)?.characteristics ?? null,
         segments: await segmentsOf(sequelize, definition.id, tx),
+        protection: await protectionOf(sequelize, { id: definition.id, columns: definition.content.columns }, tx),
       },
     },
     { kind: 'classing', title: 'Bins, counts by partition and edits by hand', content: { edits, characteristics: summaries, bins: frozen.figures.bins } },

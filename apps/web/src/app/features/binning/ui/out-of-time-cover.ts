@@ -15,9 +15,12 @@ import { PartitionMark } from '../../../ui/partition-mark';
       @if (mayOpen()) {
         <button matButton type="button" (click)="ask()">Open…</button>
       }
+      @if (openings(); as words) {
+        <span class="ts-caption">{{ words }}</span>
+      }
     } @else if (state() === 'opened') {
       <ts-partition partition="outOfTime" />
-      <span class="ts-caption">opened</span>
+      <span class="ts-caption">{{ openings() ?? 'opened' }}</span>
     }
   `,
   styles: `
@@ -34,13 +37,15 @@ import { PartitionMark } from '../../../ui/partition-mark';
 export class OutOfTimeCover {
   private readonly asking = inject(Ask);
   readonly state = input.required<Binning['outOfTime']>();
+  /** How often these rows were opened, and how much of that under other definitions. */
+  readonly openings = input<Binning['outOfTimeOpenings']>(null);
   readonly mayOpen = input(false);
   readonly opened = output<string>();
 
   protected async ask(): Promise<void> {
     const answer = await this.asking.for({
       title: 'Open the out-of-time figures?',
-      text: 'They are covered so that bins and fits are not chosen by them. Opening is recorded, holds for every binning and fit of this sample, and the documentation says how often it happened before freezing.',
+      text: 'They are covered so that bins and fits are not chosen by them. Opening is recorded, holds for every binning and fit of this definition, counts for every other definition over the same rows, and the documentation says how often it happened before freezing.',
       accept: 'Open',
       reason: { label: 'Why now', required: true, hint: 'A sentence, of ten characters at least' },
     });

@@ -1,5 +1,6 @@
 import { HttpClient, type HttpResourceRef, httpResource } from '@angular/common/http';
 import { Injectable, inject } from '@angular/core';
+import type { NewPermissionAct, ProtectedColumns } from '@tallystone/contracts/permissions/schema';
 import type { PartitionBalance } from '@tallystone/contracts/samples/balance';
 import type { ColumnList, ColumnProfile, ColumnRole } from '@tallystone/contracts/samples/columns';
 import type {
@@ -79,6 +80,14 @@ export function balanceOf(
   });
 }
 
+/** What of a confirmed definition is protected; nothing is asked while there is no definition. */
+export function protectedOf(definitionId: () => string | null): HttpResourceRef<ProtectedColumns | undefined> {
+  return httpResource<ProtectedColumns>(() => {
+    const id = definitionId();
+    return id === null ? undefined : `/api/sample-definitions/${id}/protected-columns`;
+  });
+}
+
 export function qualityOf(modelId: () => string, sampleId: () => string): HttpResourceRef<QualityState | undefined> {
   return httpResource<QualityState>(() => `${of(modelId(), sampleId())}/quality`);
 }
@@ -132,6 +141,10 @@ export class Samples {
     return firstValueFrom(
       this.http.post<Run>(`${of(modelId, sampleId)}/definitions`, { revision }, { headers: idempotent(key) }),
     );
+  }
+
+  actOnProtected(definitionId: string, act: NewPermissionAct): Promise<ProtectedColumns> {
+    return firstValueFrom(this.http.post<ProtectedColumns>(`/api/sample-definitions/${definitionId}/protected-columns`, act));
   }
 
   makeQuality(modelId: string, sampleId: string, key: string): Promise<Run> {

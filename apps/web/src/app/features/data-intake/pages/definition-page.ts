@@ -1,7 +1,8 @@
-import { ChangeDetectionStrategy, Component, computed, effect, inject, input, signal, untracked } from '@angular/core';
+import { ChangeDetectionStrategy, Component, Injector, computed, effect, inject, input, signal, untracked } from '@angular/core';
 import { takeUntilDestroyed } from '@angular/core/rxjs-interop';
 import { MatButtonModule } from '@angular/material/button';
 import { RouterLink } from '@angular/router';
+import type { ProtectedColumn } from '@tallystone/contracts/permissions/schema';
 import type { ColumnRole } from '@tallystone/contracts/samples/columns';
 import type { DraftContent } from '@tallystone/contracts/samples/definition';
 import { filter } from 'rxjs';
@@ -11,6 +12,7 @@ import { newIdempotencyKey } from '../../../core/http/etag';
 import { Problem } from '../../../core/http/problem';
 import { Task } from '../../../core/task';
 import { warnBeforeUnload } from '../../../core/unsaved-changes';
+import { Ask } from '../../../ui/ask';
 import { DecisionNotice } from '../../../ui/decision-notice';
 import { moment, plural } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
@@ -18,13 +20,14 @@ import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { Tombstone } from '../../../ui/tombstone';
 import { DraftStore } from '../data/draft-store';
-import { type ColumnProfile, Samples, balanceOf, columnsOf, definitionsOf, oneSample } from '../data/samples';
+import { type ColumnProfile, Samples, balanceOf, columnsOf, definitionsOf, oneSample, protectedOf } from '../data/samples';
 import { BalanceTable } from '../ui/balance-table';
 import { ExclusionList } from '../ui/exclusion-list';
 import { countsFinding } from '../ui/findings';
 import { OutcomeEditor } from '../ui/outcome-editor';
 import { PartitionEditor } from '../ui/partition-editor';
 import { PartitionTable } from '../ui/partition-table';
+import { ProtectedList } from '../ui/protected-list';
 import { SampleSteps } from '../ui/sample-steps';
 import { SaveStateNote } from '../ui/save-state';
 import { SensitivityTable } from '../ui/sensitivity-table';
@@ -46,6 +49,7 @@ import { WaterfallFigure } from '../ui/waterfall-figure';
     PartitionEditor,
     PartitionTable,
     ProblemList,
+    ProtectedList,
     RunProgress,
     SampleSteps,
     SaveStateNote,
@@ -66,6 +70,8 @@ export class DefinitionPage {
   private readonly samples = inject(Samples);
   private readonly runs = inject(Runs);
   private readonly current = inject(CurrentModel);
+  private readonly asking = inject(Ask);
+  private readonly injector = inject(Injector);
   protected readonly draft = inject(DraftStore);
 
   readonly modelId = input.required<string>();
@@ -91,6 +97,8 @@ export class DefinitionPage {
   /** Shown instead of the draft until somebody works on another definition. */
   protected readonly confirmed = computed(() => (this.changing() ? null : this.latest()));
   protected readonly balance = balanceOf(this.model, this.id, () => this.confirmed()?.id ?? null);
+  protected readonly protection = protectedOf(() => this.confirmed()?.id ?? null);
+  protected readonly withdrawing = new Task();
   protected readonly weight = computed(() => this.draft.content()?.columns.find(({ role }) => role === 'weight')?.column ?? null);
   protected readonly problems = computed(() => {
     const counted = this.draft.check()?.problems ?? [];
@@ -173,6 +181,32 @@ export class DefinitionPage {
           : entry,
       ),
     }));
+  }
+
+  /** The dialog's code is loaded when somebody first permits something. */
+  protected async permit(column: ProtectedColumn): Promise<void> {
+    const definitionId = this.confirmed()?.id;
+    if (definitionId === undefined) return;
+    const [{ MatDialog }, { PermitDialog }] = await Promise.all([import('@angular/material/dialog'), import('../ui/permit-dialog')]);
+    const permit = async (citation: string, reason: string): Promise<void> => {
+      this.protection.set(await this.samples.actOnProtected(definitionId, { act: 'permitted', column: column.column, citation, reason }));
+    };
+    this.injector.get(MatDialog).open(PermitDialog, { data: { column, permit }, width: '560px' });
+  }
+
+  protected async withdraw({ column }: ProtectedColumn): Promise<void> {
+    const definitionId = this.confirmed()?.id;
+    if (definitionId === undefined) return;
+    const answer = await this.asking.for({
+      title: `Withdraw the permission of ${column}?`,
+      text: 'It is barred again from every binning and fit of this definition, and nothing that took it in can be frozen.',
+      accept: 'Withdraw',
+      reason: { label: 'Why it is withdrawn', required: true, hint: 'A sentence, of ten characters at least' },
+    });
+    if (!answer) return;
+    await this.withdrawing.run(async () => {
+      this.protection.set(await this.samples.actOnProtected(definitionId, { act: 'withdrawn', column, reason: answer.reason }));
+    });
   }
 
   protected async confirm(): Promise<void> {

@@ -77,12 +77,13 @@ const roles: readonly ColumnRole[] = [
         </mat-checkbox>
         @if (entry.protected) {
           <p class="ts-caption">
-            Barred from any fit unless compliance permits it with a citation. Which attributes are protected is for the law that
+            Barred from every binning and fit until somebody with the role of compliance permits it, with a citation, on the
+            confirmed definition. Which attributes are protected is for the law that
             applies to the lender and its qualified staff.
           </p>
           @if (entry.role === 'characteristic') {
             <mat-form-field>
-              <mat-label>Citation that permits it</mat-label>
+              <mat-label>Citation you propose to compliance</mat-label>
               <input
                 matInput
                 [value]="entry.citation ?? ''"
