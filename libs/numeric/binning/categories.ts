@@ -11,9 +11,10 @@ export interface CategoryCounts {
 const RARE_PART = 0.2;
 
 /**
- * Groups categories: ordered by bad rate (lowest first), then merged with the largest information value under the constraints. For a two-valued
- * outcome the best grouping is contiguous in that order, so the merge is exact for the order found. Rare categories (below a fifth of the smallest
- * share, or without a good or a bad) are pooled and take their place by the rate of the pool.
+ * Groups categories: ordered by bad rate (lowest first), then merged along that order into what is best by the criterion under the constraints: exact
+ * among groups that are stretches of the order. For a two-valued outcome no other grouping is better, unless a smallest share or count forbids the best
+ * one: then another may gain a little, with groups that overlap in risk, and is not sought. Rare categories (below a fifth of the smallest share, or
+ * without a good or a bad) are pooled and take their place by the rate of the pool.
  * @param categories weighted goods and bads, and rows, of each category
  * @param constraints what every group has to satisfy; its trend is not used
  * @param totals goods and bads of the whole characteristic; default: those of the categories

@@ -173,7 +173,7 @@ describe('classNumeric', () => {
 
   it('prefers fewer bins where more bring nothing', () => {
     const same = { goods: [10, 10, 10], bads: [5, 5, 5], rows: [15, 15, 15] };
-    expect(classNumeric(same, open)).toEqual({ cuts: [], informationValue: 0, trend: 'flat' });
+    expect(classNumeric(same, open)).toEqual({ cuts: [], informationValue: 0, trend: 'flat', worth: 0 });
   });
 
   it('gives one bin when nothing satisfies the constraints', () => {
@@ -244,6 +244,69 @@ describe('classCategories', () => {
       }),
       { numRuns: 60 },
     );
+  });
+
+  it('is as good as every grouping along the order of risk under every constraint, by either criterion', () => {
+    const cell = fc.tuple(fc.integer({ min: 8, max: 60 }), fc.integer({ min: 8, max: 60 }));
+    let compared = 0;
+    let forbidding = 0;
+    fc.assert(
+      fc.property(
+        fc.array(cell, { minLength: 2, maxLength: 7 }),
+        constraintSets,
+        fc.constantFrom<'information value' | 'deviance'>('information value', 'deviance'),
+        (cells, limits, criterion) => {
+          const constraints: Constraints = { ...limits, trend: 'any', criterion };
+          const categories = cells.map(([g, b]) => category(g, b));
+          const total = categories.reduce((sum, { rows }) => sum + rows, 0);
+          // None is rare, so that each stands in the order by a rate of its own.
+          fc.pre(categories.every(({ rows }) => rows >= 0.2 * constraints.smallestShare * total));
+          const order = categories.map((_, i) => i).sort((a, b) => categories[a].bads / categories[a].rows - categories[b].bads / categories[b].rows || a - b);
+          const fine: Fine = {
+            goods: order.map((i) => categories[i].goods),
+            bads: order.map((i) => categories[i].bads),
+            rows: order.map((i) => categories[i].rows),
+          };
+          const worth = (cuts: readonly number[]): number => {
+            if (criterion === 'deviance') return -devianceOf(fine, cuts);
+            const { goods, bads } = merged(fine, cuts);
+            return weightOfEvidence(goods, bads, { amount: 0, when: 'never' }).informationValue;
+          };
+          const { groups } = classCategories(categories, constraints);
+          expect(groups.flat().sort((a, b) => a - b)).toEqual(categories.map((_, i) => i));
+          const cuts = groups.slice(0, -1).map((_, g) => groups.slice(0, g + 1).flat().length);
+          // Each group is a stretch of the order.
+          groups.forEach((group, g) => {
+            const stretch = order.slice(g === 0 ? 0 : cuts[g - 1], cuts[g] ?? order.length);
+            expect([...stretch].sort((a, b) => a - b)).toEqual(group);
+          });
+          const every = everyPartition(order.length);
+          const sound = every.filter((one) => allowed(fine, one, constraints));
+          if (sound.length === 0) {
+            expect(cuts).toEqual([]);
+            return;
+          }
+          compared++;
+          if (sound.length < every.length) forbidding++;
+          expect(allowed(fine, cuts, constraints)).toBe(true);
+          // Sums of at most seven terms of a few hundred.
+          expect(worth(cuts)).toBeCloseTo(Math.max(...sound.map(worth)), 8);
+        },
+      ),
+      { numRuns: 400 },
+    );
+    expect(compared).toBeGreaterThan(150);
+    expect(forbidding).toBeGreaterThan(100);
+  });
+
+  it('keeps to the order of risk where a smallest count would let another grouping gain a little', () => {
+    const categories = [category(13, 34), category(9, 10), category(16, 41), category(31, 15)];
+    const { groups, informationValue } = classCategories(categories, { ...open, smallestBads: 15, mostBins: 3 });
+    expect(groups).toEqual([[1, 3], [2], [0]]);
+    // Category 1 alone has too few bads. In one group with 0, over the head of 2, it would gain 0.0005.
+    const other = weightOfEvidence([31, 16, 22], [15, 41, 44], { amount: 0, when: 'never' }).informationValue;
+    expect(other - informationValue).toBeGreaterThan(0);
+    expect(other - informationValue).toBeLessThan(0.001);
   });
 
   it('takes no category at all', () => expect(classCategories([], open)).toEqual({ groups: [], informationValue: 0 }));

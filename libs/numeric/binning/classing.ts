@@ -31,6 +31,8 @@ export interface NumericClassing {
   readonly informationValue: number;
   /** What the bins found show. */
   readonly trend: Trend;
+  /** How good they are by the criterion in force, larger is better: the information value, or minus half the deviance of the bad rates. For comparing trends. */
+  readonly worth: number;
 }
 
 /**
@@ -57,13 +59,15 @@ export function classNumeric(
   const ends = [...cuts, table.classes];
   let start = 0;
   let informationValue = 0;
+  let worth = 0;
   const woes = ends.map((end) => {
     informationValue += table.value(start, end);
+    worth += table.worth(start, end);
     const woe = table.woe(start, end);
     start = end;
     return woe;
   });
-  return { cuts, informationValue, trend: trendOf(woes) };
+  return { cuts, informationValue, trend: trendOf(woes), worth };
 }
 
 /** The trend of weights of evidence over ordered bins. @example trendOf([-1, 0, 1]) // 'rising' */

@@ -22,7 +22,7 @@ export interface ClassedBins {
 
 /**
  * Bins of one characteristic under constraints, from its fine classes; special codes and missing in bins of their own. "monotone" is classed
- * both ways and takes the one with the larger information value; "cross-validated" takes the trend that predicts best what it has not seen.
+ * both ways and takes the one that is better by the criterion in force; "cross-validated" takes the trend that predicts best what it has not seen.
  */
 export function classFine(fine: Fine, asked: AskedConstraints): ClassedBins {
   const own = { special: fine.special.map(() => 'own' as const), missing: 'own' as const };
@@ -54,7 +54,7 @@ export function classFine(fine: Fine, asked: AskedConstraints): ClassedBins {
     };
     return { constraints, ...classNumeric(known, constraints, totals) };
   });
-  const best = tried.reduce((a, b) => (b.informationValue > a.informationValue ? b : a));
+  const best = tried.reduce((a, b) => (b.worth > a.worth ? b : a));
   return { constraints: best.constraints, bins: { kind: 'numeric', edges: best.cuts.map((cut) => fine.edges[cut - 1]), ...own } };
 }
 
