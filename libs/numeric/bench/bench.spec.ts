@@ -176,7 +176,7 @@ describe('warnings', () => {
     expect(reversedBins(readBench({ ...fine, holdOut: reversed }, bins), 'holdOut')).toEqual([1]);
     expect(codes({ ...fine, holdOut: reversed }, bins)).toEqual(['reversed-in-hold-out']);
     // The same counts out of time; covered, nothing of them is there to be told.
-    const outOfTime = { ...reversed, rows: fine.holdOut!.rows };
+    const outOfTime = { ...reversed, rows: fine.holdOut.rows };
     const [warning] = benchWarnings(readBench({ ...fine, outOfTime }, bins), limits);
     expect(warning).toMatchObject({ code: 'reversed-out-of-time', bins: [1] });
     expect(warning.message).toBe('The order of risk is reversed out of time, beyond chance, up to and including 20 to under 30.');

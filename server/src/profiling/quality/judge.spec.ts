@@ -19,7 +19,8 @@ interface Row {
 const repeated = (count: number, row: Row): Row[] => Array.from({ length: count }, () => row);
 
 /** Measures the rows as the report does, and judges what was counted. */
-function flagsOf(rows: readonly Row[], { role = 'characteristic' as DefinedColumn['role'], months = 0, baselineMonths = 0 } = {}): RaisedFlag[] {
+function flagsOf(rows: readonly Row[], asked: { role?: DefinedColumn['role']; months?: number; baselineMonths?: number } = {}): RaisedFlag[] {
+  const { role = 'characteristic', months = 0, baselineMonths = 0 } = asked;
   const texts = rows.map(({ value }) => (value === null ? '' : String(value)));
   const profile = profileColumn('income', 0, sourceOf({ income: texts }).column('income') as TextColumn, choices, null);
   const defined: DefinedColumn = { column: 'income', kind: 'numeric', role, protected: false, citation: null, special: [], reason: null };
