@@ -218,8 +218,12 @@ describe('a reading that is cancelled', () => {
     const { body: run } = await modeller.post(`${path}/readings`).send(preview.choices).expect(202);
     await modeller.post(`${path}/readings`).send(preview.choices).expect(409);
     // Under way for a moment, so that something has been stored.
-    for (let wait = 0; wait < 400 && (await modeller.get(`/api/runs/${run.id}`)).body.share < 0.1; wait++)
-      await new Promise((resolve) => setTimeout(resolve, 20));
+    await expect
+      .poll(async () => ((await modeller.get(`/api/runs/${run.id}`)).body as { share: number | null }).share ?? 0, {
+        interval: 20,
+        timeout: 60_000,
+      })
+      .toBeGreaterThanOrEqual(0.1);
     expect((await modeller.get(path)).body.state).toBe('reading');
     await modeller.post(`/api/runs/${run.id}/cancel`).expect(200);
     const ended = await modeller.ended(run.id);

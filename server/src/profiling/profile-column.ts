@@ -204,12 +204,13 @@ const plainAmount = /^-?[\d.,]+$/;
 
 const unexampled: Partial<Record<ColumnFlag['code'], string>> = {
   'doubtful-dates': 'Some of its values are no dates, or doubtful ones.',
+  'mixed-numbers': 'Numbers are written in more than one way: write them in one way in the file and bring it in again, or do not use the column.',
   'numbers-as-text': 'Some of its values are numbers, or written like numbers, and others are not.',
   'unreadable-numbers': 'Some of its values are no numbers.',
 };
 
 /** The finding of its kind without the values that it quotes. */
-const withoutExamples = (flag: ColumnFlag): ColumnFlag => ({ ...flag, finding: unexampled[flag.code] ?? flag.finding });
+const withoutExamples = ({ code, weight, finding }: ColumnFlag): ColumnFlag => ({ code, weight, finding: unexampled[code] ?? finding });
 
 /** Mean and deviation in one pass over distinct values (weighted Welford 1962); quantiles are type 7 of Hyndman and Fan 1996. */
 function describeNumbers({ values, counts, length }: CountedNumbers): NonNullable<ColumnProfile['numeric']> {
