@@ -103,5 +103,7 @@ async function settle(
   }).catch((refused: unknown) => {
     if (!(refused instanceof Superseded)) throw refused;
   });
-  log.info({ err: cause instanceof Cancelled || cause instanceof Stopping ? undefined : cause }, 'run ended without a result');
+  if (cause instanceof Cancelled || cause instanceof Stopping) log.info('run ended without a result');
+  else if (problemFrom(cause)) log.info({ err: cause }, 'run failed');
+  else log.error({ err: cause }, 'run failed on our side');
 }
