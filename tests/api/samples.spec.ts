@@ -248,7 +248,8 @@ describe('a sample from its file to its definition', () => {
     }
     // Staff is excluded, so that branch and web are left.
     expect(balance.characteristics[3].holdOut.classes).toBe(2);
-    expect(JSON.stringify(balance)).not.toMatch(/good|bad/i);
+    // Without the identifier, whose digits may spell a word.
+    expect(JSON.stringify(balance.characteristics)).not.toMatch(/good|bad/i);
     await other.get(`${path}/definitions/${definitionId}/balance`).expect(404);
     await expect(server.context.sequelize.query(`UPDATE sample_balances SET characteristics = '[]'`)).rejects.toThrow(/permission denied/);
     const { body: work } = await modeller.get(`/api/models/${modelId}/work`).expect(200);
