@@ -10,13 +10,21 @@ const long = process.env['TALLYSTONE_LONG'] === '1';
 export default defineConfig({
   resolve: {
     alias: [
+      // Threads and processes start from the built server.
+      { find: /^(?:\.\.\/)+running\/entry-files$/, replacement: at('./tests/support/built-entry-files.ts') },
       { find: /^@tallystone\/numeric$/, replacement: at('./libs/numeric/index.ts') },
       { find: /^@tallystone\/numeric\/(.*)$/, replacement: `${at('./libs/numeric')}/$1` },
       { find: /^@tallystone\/contracts\/(.*)$/, replacement: `${at('./libs/contracts')}/$1` },
     ],
   },
   test: {
-    include: ['libs/**/*.spec.ts', 'server/**/*.spec.ts', 'data-demo/**/*.spec.ts', 'tests/{reference,api,faults,support}/**/*.spec.ts'],
+    include: [
+      'libs/**/*.spec.ts',
+      'server/**/*.spec.ts',
+      'data-demo/**/*.spec.ts',
+      'tests/{reference,api,faults,support}/**/*.spec.ts',
+    ],
+    globalSetup: ['./tests/support/built-server.ts'],
     exclude: ['**/node_modules/**', ...(long ? [] : ['**/*.long.spec.ts'])],
     // One process for many files, which shares what they import: importing took longer than testing. Each file opens and closes what it uses.
     isolate: false,

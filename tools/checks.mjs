@@ -140,6 +140,8 @@ export function steps({ work, long, filter }) {
       title: 'Unit tests of libraries and server, API and reference checks',
       // One lane, though it works with two processes: it begins while the other lane ends, and browser tests wait for both.
       slots: 1,
+      // Threads and processes of the tests start from the built server.
+      after: ['build'],
       folders: ['libs', 'server/src', 'tests/reference', 'tests/api'],
       needs: ['postgres'],
       report: report('unit'),

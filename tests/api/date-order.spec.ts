@@ -8,6 +8,7 @@ import type { Preview } from '@tallystone/contracts/samples/reading';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import type { ValidationWork } from '@tallystone/contracts/validation/schema';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { builtPath } from '../support/built-server';
 import { applicantsWithRisk, classApplicants, defineApplicants } from '../support/binned';
 import { IntakeServer, type Visitor } from '../support/intake';
 import { act, choose, fitPath, freeze, replicate, scale, writeTexts } from '../support/line';
@@ -107,7 +108,7 @@ describe('dates written day first', () => {
         '--expect',
         at('result.json'),
       ];
-      const printed = execFileSync(process.execPath, ['--import', 'tsx', 'server/src/cli/replicate.ts', ...args], {
+      const printed = execFileSync(process.execPath, [builtPath('cli/replicate'), ...args], {
         encoding: 'utf8',
       });
       expect(printed).toContain('all equal');

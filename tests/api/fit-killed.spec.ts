@@ -1,10 +1,10 @@
 import { type ChildProcess, spawn } from 'node:child_process';
-import { fileURLToPath } from 'node:url';
 import type { Fit, FitPath } from '@tallystone/contracts/fits/schema';
 import type { Run } from '@tallystone/contracts/runs/schema';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { rows } from '../../server/src/database/sql';
 import { startWorker, type WorkerService } from '../../server/src/jobs/worker';
+import { builtPath } from '../support/built-server';
 import { applicantsWithRisk, classApplicants, defineApplicants } from '../support/binned';
 import { IntakeServer, type Visitor } from '../support/intake';
 import { key } from '../support/line';
@@ -37,14 +37,21 @@ async function start(name: string, folds = 20): Promise<Fit> {
   const { body } = await modeller
     .post(`/api/models/${modelId}/fits`)
     .set('Idempotency-Key', key())
-    .send({ binningId, settings: { name, lambda: { count: 100, smallestRatio: 1e-6, earlyStop: false }, folds: { count: folds, seed: 3, classing: 'cuts' } } })
+    .send({
+      binningId,
+      settings: {
+        name,
+        lambda: { count: 100, smallestRatio: 1e-6, earlyStop: false },
+        folds: { count: folds, seed: 3, classing: 'cuts' },
+      },
+    })
     .expect(201);
   return body as Fit;
 }
 
 /** A worker in a process of its own, as an installation runs it. */
 function workerProcess(): ChildProcess {
-  const child = spawn(process.execPath, ['--import', 'tsx', fileURLToPath(new URL('../../server/src/cli/work.ts', import.meta.url))], {
+  const child = spawn(process.execPath, [builtPath('cli/work')], {
     env: { ...process.env, ...IntakeServer.environment(server.database, server.folder), LOG_LEVEL: 'error' },
     stdio: ['ignore', 'ignore', 'inherit'],
   });
@@ -81,9 +88,12 @@ describe('a worker killed in the middle of a fit', () => {
     worker = await startWorker(server.context);
     const run = await modeller.ended(fit.runId!, 180_000);
     expect(run).toMatchObject({ state: 'succeeded', attempt: 2 });
-    const paths = await rows<{ attempt: number }>(server.context.sequelize, 'SELECT attempt FROM fit_paths WHERE fit_id = $1', [fit.id]);
+    const paths = await rows<{ attempt: number }>(server.context.sequelize, 'SELECT attempt FROM fit_paths WHERE fit_id = $1', [
+      fit.id,
+    ]);
     expect(paths).toEqual([{ attempt: 2 }]);
-    const numbers = async (id: string): Promise<FitPath> => (await modeller.get(`/api/fits/${id}/path`).expect(200)).body as FitPath;
+    const numbers = async (id: string): Promise<FitPath> =>
+      (await modeller.get(`/api/fits/${id}/path`).expect(200)).body as FitPath;
     expect(await numbers(fit.id)).toEqual(await numbers(undisturbed.id));
   }, 480_000);
 

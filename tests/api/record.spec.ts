@@ -1,10 +1,10 @@
 import { execFile } from 'node:child_process';
-import { fileURLToPath } from 'node:url';
 import { Pool } from 'pg';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { inTransaction } from '../../server/src/database/transaction';
 import { appendRecord, nobody } from '../../server/src/services/record/append';
 import { recordHead, verifyChain } from '../../server/src/services/record/verify';
+import { builtPath } from '../support/built-server';
 import { IntakeServer, type Visitor } from '../support/intake';
 
 let server: IntakeServer;
@@ -196,7 +196,7 @@ describe('verification', () => {
       new Promise((resolve) =>
         execFile(
           process.execPath,
-          ['--import', 'tsx', fileURLToPath(new URL('../../server/src/cli/verify-record.ts', import.meta.url)), ...args],
+          [builtPath('cli/verify-record'), ...args],
           { env: { ...process.env, DATABASE_URL: server.database.appUrl } },
           (error, out, err) => resolve({ code: typeof error?.code === 'number' ? error.code : 0, out, err }),
         ),

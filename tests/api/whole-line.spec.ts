@@ -10,9 +10,22 @@ import type { DraftContent } from '@tallystone/contracts/samples/definition';
 import type { Result } from '@tallystone/contracts/result/types';
 import type { ValidationWork } from '@tallystone/contracts/validation/schema';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { builtPath } from '../support/built-server';
 import { classApplicants } from '../support/binned';
 import { IntakeServer, type Visitor } from '../support/intake';
-import { act, choose, everyText, fitPath, freeze, key, makeDocument, replicate, scale, studyStability, writeTexts } from '../support/line';
+import {
+  act,
+  choose,
+  everyText,
+  fitPath,
+  freeze,
+  key,
+  makeDocument,
+  replicate,
+  scale,
+  studyStability,
+  writeTexts,
+} from '../support/line';
 
 /**
  * The whole line through the API on open data: Statlog German Credit (H. Hofmann 1994, UCI Machine Learning Repository 144, CC BY 4.0 from
@@ -42,7 +55,8 @@ beforeAll(async () => {
 }, 120_000);
 afterAll(() => server.stop());
 
-const path = async (fitId: string): Promise<FitPath> => (await modeller.get(`/api/fits/${fitId}/path`).expect(200)).body as FitPath;
+const path = async (fitId: string): Promise<FitPath> =>
+  (await modeller.get(`/api/fits/${fitId}/path`).expect(200)).body as FitPath;
 
 describe('the whole line on the Statlog German Credit data', () => {
   it('brings the file in and confirms what it means', async () => {
@@ -63,7 +77,10 @@ describe('the whole line on the Statlog German Credit data', () => {
     };
     const saved = await modeller.put(`${sample.path}/draft`).set('If-Match', headers.etag).send(content).expect(200);
     expect(saved.body.problems).toEqual([]);
-    const started = await modeller.post(`${sample.path}/definitions`).send({ revision: saved.body.revision as number }).expect(202);
+    const started = await modeller
+      .post(`${sample.path}/definitions`)
+      .send({ revision: saved.body.revision as number })
+      .expect(202);
     const run = await modeller.ended(started.body.id as string);
     expect(run.problem).toBeNull();
     definitionId = (run.result as { definitionId: string }).definitionId;
@@ -89,7 +106,10 @@ describe('the whole line on the Statlog German Credit data', () => {
   it('takes protected columns into no fit, whatever is sent', async () => {
     const { body } = await modeller
       .post(`/api/models/${modelId}/fits`)
-      .send({ binningId, settings: { name: 'Barred', characteristics: [{ column: 'personal', treatment: 'always kept', reason: 'tried' }] } })
+      .send({
+        binningId,
+        settings: { name: 'Barred', characteristics: [{ column: 'personal', treatment: 'always kept', reason: 'tried' }] },
+      })
       .expect(422);
     expect(body.problems[0].where).toMatchObject({ column: 'personal' });
   });
@@ -111,7 +131,11 @@ describe('the whole line on the Statlog German Credit data', () => {
     await put({ index: minimum + 1, rule: 'minimum' }).expect(422);
     await put({ index: minimum + 1, rule: 'by hand' }).expect(422);
     await put({ index: 10_000, rule: 'by hand', reason: 'beyond' }).expect(422);
-    await validator.put(`/api/fits/${lassoId}/choice`).set('If-Match', read.headers.etag).send({ index: minimum, rule: 'minimum' }).expect(403);
+    await validator
+      .put(`/api/fits/${lassoId}/choice`)
+      .set('If-Match', read.headers.etag)
+      .send({ index: minimum, rule: 'minimum' })
+      .expect(403);
     await modeller.get(`/api/fits/${lassoId}/scorecard`).expect(409);
     await put({ index: oneStandardError, rule: 'one-standard-error' }).expect(200);
     await put({ index: minimum, rule: 'minimum' }).expect(412);
@@ -119,7 +143,9 @@ describe('the whole line on the Statlog German Credit data', () => {
   });
 
   it('holds lasso and ridge side by side on the same rows', async () => {
-    ridgeId = (await fitPath(modeller, modelId, binningId, { name: 'Ridge', mixing: 0, folds: { count: 5, seed: 1, classing: 'woe' } })).id;
+    ridgeId = (
+      await fitPath(modeller, modelId, binningId, { name: 'Ridge', mixing: 0, folds: { count: 5, seed: 1, classing: 'woe' } })
+    ).id;
     const { body } = await modeller.get(`/api/models/${modelId}/comparison?fits=${lassoId},${ridgeId}`).expect(200);
     const comparison = body as Comparison;
     expect(comparison.sameRows).toBe(true);
@@ -139,9 +165,32 @@ describe('the whole line on the Statlog German Credit data', () => {
   it('scores one applicant as the points say, with reasons', async () => {
     const scorecard = await scale(modeller, lassoId, { cutOff: 470 });
     const fields = Object.fromEntries(
-      ['checking', 'duration', 'history', 'purpose', 'amount', 'savings', 'employment', 'installment_rate', 'debtors', 'residence', 'property', 'age', 'other_plans', 'housing', 'existing_credits', 'job', 'dependents', 'telephone', 'foreign_worker']
+      [
+        'checking',
+        'duration',
+        'history',
+        'purpose',
+        'amount',
+        'savings',
+        'employment',
+        'installment_rate',
+        'debtors',
+        'residence',
+        'property',
+        'age',
+        'other_plans',
+        'housing',
+        'existing_credits',
+        'job',
+        'dependents',
+        'telephone',
+        'foreign_worker',
+      ]
         .filter((column) => scorecard.characteristics.some((entry) => entry.column === column))
-        .map((column) => [column, { checking: 'lt.0', duration: '48', history: 'PaidDuly', amount: '5951', age: '22', savings: 'lt.100' }[column] ?? '']),
+        .map((column) => [
+          column,
+          { checking: 'lt.0', duration: '48', history: 'PaidDuly', amount: '5951', age: '22', savings: 'lt.100' }[column] ?? '',
+        ]),
     );
     const { body } = await modeller.post(`/api/fits/${lassoId}/scorecard/applicants`).send({ fields }).expect(200);
     const scored = body as ScoredApplicant;
@@ -152,8 +201,14 @@ describe('the whole line on the Statlog German Credit data', () => {
     expect(scored.reasons.length).toBeLessThanOrEqual(4);
     expect(scored.reasons[0].text).toMatch(/^Too few points for /);
     expect(scored.caution).toContain('law');
-    const bad = await modeller.post(`/api/fits/${lassoId}/scorecard/applicants`).send({ fields: { duration: 'long', stranger: '1' } }).expect(422);
-    expect((bad.body.problems as { where: { field: string } }[]).map(({ where }) => where.field).sort()).toEqual(['duration', 'stranger']);
+    const bad = await modeller
+      .post(`/api/fits/${lassoId}/scorecard/applicants`)
+      .send({ fields: { duration: 'long', stranger: '1' } })
+      .expect(422);
+    expect((bad.body.problems as { where: { field: string } }[]).map(({ where }) => where.field).sort()).toEqual([
+      'duration',
+      'stranger',
+    ]);
   });
 
   it('freezes once per key, and the version cannot be altered even by the application’s own role', async () => {
@@ -161,12 +216,22 @@ describe('the whole line on the Statlog German Credit data', () => {
     versionId = version.id;
     expect(version).toMatchObject({ number: 1, state: 'In development' });
     const again = key();
-    const first = await modeller.post(`/api/models/${modelId}/versions`).set('Idempotency-Key', again).send({ fitId: lassoId, note: 'twice' }).expect(202);
-    const second = await modeller.post(`/api/models/${modelId}/versions`).set('Idempotency-Key', again).send({ fitId: lassoId, note: 'twice' }).expect(202);
+    const first = await modeller
+      .post(`/api/models/${modelId}/versions`)
+      .set('Idempotency-Key', again)
+      .send({ fitId: lassoId, note: 'twice' })
+      .expect(202);
+    const second = await modeller
+      .post(`/api/models/${modelId}/versions`)
+      .set('Idempotency-Key', again)
+      .send({ fitId: lassoId, note: 'twice' })
+      .expect(202);
     expect(second.body).toEqual(first.body);
     await modeller.ended((first.body as { runId: string }).runId, 120_000);
     for (const table of ['versions', 'version_acts', 'evidence', 'documents', 'record']) {
-      await expect(server.context.sequelize.query(`UPDATE ${table} SET id = id`)).rejects.toThrow(/permission denied|does not exist/);
+      await expect(server.context.sequelize.query(`UPDATE ${table} SET id = id`)).rejects.toThrow(
+        /permission denied|does not exist/,
+      );
       await expect(server.context.sequelize.query(`DELETE FROM ${table}`)).rejects.toThrow('permission denied');
     }
     const specification = await modeller.get(`/api/versions/${versionId}/specification`).expect(200);
@@ -182,8 +247,10 @@ describe('the whole line on the Statlog German Credit data', () => {
       writeFileSync(join(folder, 'spec.json'), specification.text);
       writeFileSync(join(folder, 'result.json'), result.text);
       writeFileSync(join(folder, 'sample.csv'), csv);
-      const args = ['--specification', 'spec.json', '--data', 'sample.csv', '--out', 'own.json', '--expect', 'result.json'].map((arg) => (arg.includes('.') ? join(folder, arg) : arg));
-      const printed = execFileSync(process.execPath, ['--import', 'tsx', 'server/src/cli/replicate.ts', ...args], { encoding: 'utf8' });
+      const args = ['--specification', 'spec.json', '--data', 'sample.csv', '--out', 'own.json', '--expect', 'result.json'].map(
+        (arg) => (arg.includes('.') ? join(folder, arg) : arg),
+      );
+      const printed = execFileSync(process.execPath, [builtPath('cli/replicate'), ...args], { encoding: 'utf8' });
       expect(printed).toContain('all equal');
     } finally {
       rmSync(folder, { recursive: true });
@@ -208,7 +275,11 @@ describe('the whole line on the Statlog German Credit data', () => {
     const both = await server.signIn('bo', 'validator', 'modeller');
     await modeller.post(`/api/models/${modelId}/members`).send({ personId: both.personId }).expect(201);
     const read = await both.get(`/api/fits/${lassoId}`).expect(200);
-    await both.put(`/api/fits/${lassoId}/choice`).set('If-Match', read.headers.etag).send({ index: (await path(lassoId)).crossValidation.minimum, rule: 'minimum' }).expect(200);
+    await both
+      .put(`/api/fits/${lassoId}/choice`)
+      .set('If-Match', read.headers.etag)
+      .send({ index: (await path(lassoId)).crossValidation.minimum, rule: 'minimum' })
+      .expect(200);
     const refused = await both.post(`/api/versions/${versionId}/acts`).send({ act: 'start' }).expect(403);
     expect(refused.body.detail).toContain('took part in developing');
     const seen = await both.get(`/api/versions/${versionId}`).expect(200);
@@ -219,7 +290,12 @@ describe('the whole line on the Statlog German Credit data', () => {
 
   it('concludes only on a matching replication by someone else', async () => {
     expect((await act(validator, versionId, { act: 'start', statement: 'Full scope' })).state).toBe('In validation');
-    const conclusion = { act: 'conclude', conclusion: 'fit with conditions', conditions: ['Review after a year'], statement: 'Replicated, discriminates, calibrated.' };
+    const conclusion = {
+      act: 'conclude',
+      conclusion: 'fit with conditions',
+      conditions: ['Review after a year'],
+      statement: 'Replicated, discriminates, calibrated.',
+    };
     await replicate(modeller, versionId, 'same code');
     const refused = await validator.post(`/api/versions/${versionId}/acts`).send(conclusion).expect(409);
     expect((refused.body.problems as { code: string }[])[0].code).toBe('replication-matches');
@@ -229,7 +305,12 @@ describe('the whole line on the Statlog German Credit data', () => {
     const work = body as ValidationWork;
     expect(work.replications).toHaveLength(3);
     for (const replication of work.replications) {
-      expect(replication, JSON.stringify(replication.rows.filter(({ meets }) => !meets).slice(0, 5))).toMatchObject({ matches: true, differing: 0, scoresEqual: true, scoresCompared: 1000 });
+      expect(replication, JSON.stringify(replication.rows.filter(({ meets }) => !meets).slice(0, 5))).toMatchObject({
+        matches: true,
+        differing: 0,
+        scoresEqual: true,
+        scoresCompared: 1000,
+      });
       expect(replication.compared).toBeGreaterThan(500);
     }
     expect(work.replications.map(({ method }) => method)).toEqual(['independent', 'same code', 'same code']);
@@ -237,7 +318,10 @@ describe('the whole line on the Statlog German Credit data', () => {
     const holdOut = work.performance.find(({ partition }) => partition === 'holdOut')!;
     expect(holdOut.lower!).toBeLessThan(holdOut.auc);
     expect(holdOut.upper!).toBeGreaterThan(holdOut.auc);
-    await validator.post(`/api/versions/${versionId}/acts`).send({ ...conclusion, conditions: [] }).expect(422);
+    await validator
+      .post(`/api/versions/${versionId}/acts`)
+      .send({ ...conclusion, conditions: [] })
+      .expect(422);
     const concluded = await act(validator, versionId, conclusion);
     expect(concluded).toMatchObject({ state: 'In validation', awaitingCompliance: true });
     await modeller.post(`/api/versions/${versionId}/acts`).send({ act: 'withdraw', statement: 'Too late' }).expect(403);
@@ -257,11 +341,14 @@ describe('the whole line on the Statlog German Credit data', () => {
 
   it('makes the document, keeps its bytes and records their hash and every download', async () => {
     const made = await makeDocument(compliance, versionId);
-    const response = await compliance.get(`/api/documents/${made.documentId}/file`).buffer(true).parse((incoming, done) => {
-      const chunks: Buffer[] = [];
-      incoming.on('data', (chunk: Buffer) => chunks.push(chunk));
-      incoming.on('end', () => done(null, Buffer.concat(chunks)));
-    });
+    const response = await compliance
+      .get(`/api/documents/${made.documentId}/file`)
+      .buffer(true)
+      .parse((incoming, done) => {
+        const chunks: Buffer[] = [];
+        incoming.on('data', (chunk: Buffer) => chunks.push(chunk));
+        incoming.on('end', () => done(null, Buffer.concat(chunks)));
+      });
     expect(response.status).toBe(200);
     expect(response.headers['content-disposition']).toMatch(/^attachment; filename="M-\d+-version-1-edition-1.pdf"$/);
     const bytes = response.body as Buffer;
@@ -274,7 +361,9 @@ describe('the whole line on the Statlog German Credit data', () => {
     expect(text).toContain('Review after a year');
     for (const { column, coefficient } of result.characteristics) if (coefficient) expect(text).toContain(column);
     const record = await auditor.get('/api/record?limit=100').expect(200);
-    const actions = (record.body.entries as { action: string; detail: { sha256?: string } | null; after: { sha256?: string } | null }[]).filter(({ action }) => action.startsWith('document.'));
+    const actions = (
+      record.body.entries as { action: string; detail: { sha256?: string } | null; after: { sha256?: string } | null }[]
+    ).filter(({ action }) => action.startsWith('document.'));
     expect(actions.map(({ action }) => action)).toEqual(['document.downloaded', 'document.made']);
     expect(actions.map(({ detail, after }) => detail?.sha256 ?? after?.sha256)).toEqual([made.sha256, made.sha256]);
   }, 120_000);
@@ -286,12 +375,17 @@ describe('the whole line on the Statlog German Credit data', () => {
     const approved = await act(compliance, versionId, { act: 'accept', statement: 'Documentation accepted' });
     expect(approved.state).toBe('Approved with conditions');
     expect(approved.acts.map(({ act: name }) => name)).toEqual(['freeze', 'submit', 'start', 'conclude', 'return', 'accept']);
-    expect(new Set(approved.acts.filter(({ act: name }) => ['freeze', 'conclude', 'accept'].includes(name)).map(({ byId }) => byId)).size).toBe(3);
+    expect(
+      new Set(approved.acts.filter(({ act: name }) => ['freeze', 'conclude', 'accept'].includes(name)).map(({ byId }) => byId))
+        .size,
+    ).toBe(3);
     const read = await modeller.get(`/api/versions/${versionId}/texts`).expect(200);
     await modeller.put(`/api/versions/${versionId}/texts`).set('If-Match', read.headers.etag).send(everyText).expect(403);
     // The rule follows the latest version: the second, which was frozen above, still wants to be submitted.
     const work = await modeller.get(`/api/models/${modelId}/work`).expect(200);
-    const steps = (work.body.steps as { step: string; state: string; caption: string }[]).map(({ step, state }) => `${step} ${state}`);
+    const steps = (work.body.steps as { step: string; state: string; caption: string }[]).map(
+      ({ step, state }) => `${step} ${state}`,
+    );
     expect(steps.slice(0, 5)).toEqual(['sample done', 'binning done', 'fit done', 'scorecard done', 'version decision']);
     expect(work.body.steps[4].caption).toBe('Submit version 2');
     const model = await modeller.get(`/api/models/${modelId}`).expect(200);

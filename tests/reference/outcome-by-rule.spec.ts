@@ -5,6 +5,7 @@ import { join } from 'node:path';
 import type { Result } from '@tallystone/contracts/result/types';
 import { expect, it } from 'vitest';
 import { csvOf, inventedSample, specificationOf } from '../../server/src/replay/invented-sample';
+import { builtPath } from '../support/built-server';
 
 /**
  * An outcome by rule, replayed from the raw file by the command, against the same outcome worked out here and written into a column of texts: the two
@@ -39,7 +40,7 @@ it('a rule on days past due and months on book replays from the raw file to what
         '--out',
         place(`${name}-result.json`),
       ];
-      execFileSync(process.execPath, ['--import', 'tsx', 'server/src/cli/replicate.ts', ...args], { encoding: 'utf8' });
+      execFileSync(process.execPath, [builtPath('cli/replicate'), ...args], { encoding: 'utf8' });
       return JSON.parse(readFileSync(place(`${name}-result.json`), 'utf8')) as Result;
     };
     const [ruled, valued] = [replayed('rule', byRule), replayed('values', byValues)];

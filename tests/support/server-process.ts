@@ -1,7 +1,7 @@
 import { type ChildProcess, spawn } from 'node:child_process';
 import { readFileSync } from 'node:fs';
 import { request as send } from 'node:http';
-import { fileURLToPath } from 'node:url';
+import { builtPath } from './built-server';
 import { IntakeServer } from './intake';
 
 /** Real processes of the product on the database of a test's IntakeServer: to be killed, and to be measured. */
@@ -12,9 +12,8 @@ export interface ServerProcess {
 }
 
 export function startServerProcess(support: IntakeServer, services: 'web' | 'worker'): Promise<ServerProcess> {
-  const main = fileURLToPath(new URL('../../server/src/main.ts', import.meta.url));
   return new Promise((resolve, reject) => {
-    const child = spawn(process.execPath, ['--import', 'tsx', main, `--services=${services}`], {
+    const child = spawn(process.execPath, [builtPath('main'), `--services=${services}`], {
       env: { ...process.env, ...IntakeServer.environment(support.database, support.folder), LOG_LEVEL: 'error' },
       stdio: ['ignore', 'ignore', 'inherit', 'ipc'],
     });

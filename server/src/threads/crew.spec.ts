@@ -13,7 +13,7 @@ import {
   type HelpOrder,
 } from '@tallystone/numeric';
 import { randomProblem } from '../../../libs/numeric/testing/problems';
-import { besideThis } from './beside-this';
+import { entryFile } from '../running/entry-files';
 import { crewFor } from './crew';
 
 const ROWS = 20_000;
@@ -49,7 +49,7 @@ describe('threads that share a fit', () => {
   const send = (k: number) => (order: HelpOrder) => workers[k].postMessage(order);
 
   beforeAll(async () => {
-    for (let k = 0; k < 3; k++) workers.push(new Worker(besideThis('helper-entry'), { execArgv: [] }));
+    for (let k = 0; k < 3; k++) workers.push(new Worker(entryFile('threads/helper-entry'), { execArgv: [] }));
     await Promise.all(workers.map((worker) => new Promise((resolve) => worker.once('online', resolve))));
   });
   afterAll(async () => void (await Promise.all(workers.map((worker) => worker.terminate()))));

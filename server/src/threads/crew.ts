@@ -1,7 +1,7 @@
 import { availableParallelism } from 'node:os';
 import { Worker } from 'node:worker_threads';
 import { Alone, Team, type Crew } from '@tallystone/numeric/engine/crew';
-import { besideThis } from './beside-this';
+import { entryFile } from '../running/entry-files';
 
 /** Cells (rows times columns) from which on a helping thread gains more in every pass than it costs to wake; below, it is given folds as a whole. */
 const WORTH_CELLS = 300_000;
@@ -20,7 +20,7 @@ export function crewFor(cells: number): Crew {
 
 function helperThread(): Worker {
   if (helper) return helper;
-  const worker = new Worker(besideThis('helper-entry'), { execArgv: [] });
+  const worker = new Worker(entryFile('threads/helper-entry'), { execArgv: [] });
   // It neither keeps the process alive nor outlives its owner.
   worker.unref();
   worker.once('exit', () => (helper = null));

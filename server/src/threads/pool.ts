@@ -1,5 +1,5 @@
 import { Worker } from 'node:worker_threads';
-import { besideThis } from './beside-this';
+import { entryFile } from '../running/entry-files';
 import type { TaskMessage, TaskReply, ThrownError } from './task';
 
 /** An error that a task threw in its thread; `name` and `details` are those of the original. */
@@ -102,7 +102,7 @@ export class ThreadPool {
   }
 
   private start(): Thread {
-    const worker = new Worker(besideThis('entry'), {
+    const worker = new Worker(entryFile('threads/entry'), {
       resourceLimits: { maxOldGenerationSizeMb: this.memoryMb },
       execArgv: profiling,
     });

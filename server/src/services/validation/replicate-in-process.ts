@@ -1,11 +1,11 @@
 import { type ChildProcess, fork } from 'node:child_process';
-import { existsSync } from 'node:fs';
 import { Readable } from 'node:stream';
 import { pipeline } from 'node:stream/promises';
 import { fileURLToPath } from 'node:url';
 import { problemCodes } from '@tallystone/contracts/problems/codes';
 import type { ReplicationOrder, ReplicationReply } from '../../cli/replicate-stored';
 import { Problem } from '../../problems/problem';
+import { entryFile } from '../../running/entry-files';
 
 export type Replicated = Extract<ReplicationReply, { kind: 'done' }>;
 
@@ -21,7 +21,7 @@ export async function replicateInProcess(
   options: { signal: AbortSignal; memoryMb: number; onProgress: (phase: string, share: number | null) => void },
 ): Promise<Replicated> {
   const { signal, memoryMb, onProgress } = options;
-  const entry = entryFile();
+  const entry = fileURLToPath(entryFile('cli/replicate-stored'));
   const child = fork(entry, [], {
     stdio: ['pipe', 'ignore', 'pipe', 'ipc'],
     serialization: 'advanced',
@@ -51,7 +51,10 @@ export async function replicateInProcess(
   }
 }
 
-function answerOf(child: ChildProcess, onProgress: (phase: string, share: number | null) => void): Promise<Exclude<ReplicationReply, { kind: 'progress' }>> {
+function answerOf(
+  child: ChildProcess,
+  onProgress: (phase: string, share: number | null) => void,
+): Promise<Exclude<ReplicationReply, { kind: 'progress' }>> {
   return new Promise((resolve, reject) => {
     let complaint = '';
     child.stderr?.on('data', (chunk: Buffer) => (complaint = (complaint + chunk.toString('utf8')).slice(-4000)));
@@ -66,12 +69,4 @@ function answerOf(child: ChildProcess, onProgress: (phase: string, share: number
       else reject(new Error(`The replicating process ended with ${cause ?? code} and no answer. ${complaint}`));
     });
   });
-}
-
-/** The child's own file: TypeScript through tsx while developing, its bundle when built. */
-function entryFile(): string {
-  const candidates = import.meta.url.endsWith('.ts') ? ['../../cli/replicate-stored.ts'] : ['./cli/replicate-stored.js', '../cli/replicate-stored.js', './replicate-stored.js'];
-  const found = candidates.map((path) => fileURLToPath(new URL(path, import.meta.url))).find((path) => existsSync(path));
-  if (!found) throw new Error(`No file to replicate with beside ${import.meta.url}`);
-  return found;
 }
