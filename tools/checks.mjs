@@ -149,7 +149,7 @@ export function steps({ work, long, filter }) {
         ...bin('vitest/vitest.mjs'),
         'run',
         ...filter,
-        '--maxWorkers=2',
+        '--maxWorkers=3',
         '--reporter=default',
         '--reporter=json',
         `--outputFile.json=${report('unit')}`,
