@@ -78,6 +78,7 @@ export function specsUnder(folder) {
  */
 export function steps({ work, long, filter }) {
   const report = (name) => path.join(work, `${name}.json`);
+  const ground = report('ground');
   const ng = bin('@angular/cli/bin/ng.js');
   return [
     {
@@ -159,15 +160,24 @@ export function steps({ work, long, filter }) {
       count: countVitest,
     },
     {
+      name: 'demo',
+      title: 'Demo that the browser tests start on',
+      slots: 1,
+      after: ['build'],
+      needs: ['postgres'],
+      command: [...bin('tsx/dist/cli.mjs'), 'tests/support/lay-ground.ts', ground],
+      count: oneCheck,
+    },
+    {
       name: 'e2e',
       title: 'End-to-end tests in the browser',
       slots: 2,
-      after: ['build'],
+      after: ['build', 'demo'],
       folders: ['tests/e2e'],
       needs: ['postgres', 'browser'],
       report: report('e2e'),
       command: [...bin('@playwright/test/cli.js'), 'test', '--reporter=list,json'],
-      env: { PLAYWRIGHT_JSON_OUTPUT_NAME: report('e2e'), PLAYWRIGHT_SKIP_BROWSER_DOWNLOAD: '1' },
+      env: { TALLYSTONE_E2E_GROUND: ground, PLAYWRIGHT_JSON_OUTPUT_NAME: report('e2e'), PLAYWRIGHT_SKIP_BROWSER_DOWNLOAD: '1' },
       count: countPlaywright,
     },
   ];

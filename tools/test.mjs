@@ -3,7 +3,7 @@
  * `npm test`: everything that has to hold, in one command, on a PostgreSQL of its own.
  *
  *   npm test                            all steps
- *   npm test -- --only lint,unit        some of them (lint, types, boundaries, build, web, unit, e2e)
+ *   npm test -- --only lint,unit        some of them (lint, types, boundaries, build, web, unit, demo, e2e)
  *   npm test -- --only unit libs/numeric    and of the unit tests those whose path contains this
  *   npm run test:long                   with the long corpora (*.long.spec.ts)
  *

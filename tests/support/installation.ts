@@ -1,12 +1,12 @@
 import { type ChildProcess, execFile, spawn } from 'node:child_process';
-import { closeSync, openSync, readFileSync } from 'node:fs';
+import { closeSync, openSync, readFileSync, rmSync } from 'node:fs';
 import { createServer } from 'node:net';
 import { join } from 'node:path';
 import { fileURLToPath } from 'node:url';
 import { promisify } from 'node:util';
 import { ensureBuilt } from '../../tools/build.mjs';
 import { createTestDataFolder } from './keys';
-import { asOwner, databaseName, dropDatabase, inDatabase, testServer } from './test-server';
+import { asOwner, dropDatabase, groundName, inDatabase, testServer } from './test-server';
 
 /** How one of the demo's people signs in. */
 export interface SignIn {
@@ -91,67 +91,107 @@ async function end(child: ChildProcess | undefined, signal: NodeJS.Signals): Pro
   clearTimeout(late);
 }
 
+/** A migrated database and a data folder, with the demo or without: what an installation starts on. Plain data, so that another process can start on it. */
+export interface Ground {
+  readonly database: string;
+  readonly folder: string;
+  readonly keysFile: string;
+  readonly signIns: readonly SignIn[];
+}
+
+async function environmentOf({ database, folder, keysFile }: Omit<Ground, 'signIns'>): Promise<NodeJS.ProcessEnv> {
+  return {
+    ...process.env,
+    NODE_ENV: 'production',
+    DATABASE_URL: inDatabase((await testServer()).appUrl, database),
+    TALLYSTONE_DATA: folder,
+    TALLYSTONE_KEYS: keysFile,
+    TALLYSTONE_SERVER_DIST: distribution,
+  };
+}
+
+async function remove({ database, folder }: Omit<Ground, 'signIns'>): Promise<void> {
+  await dropDatabase(await testServer(), database);
+  rmSync(folder, { recursive: true, force: true });
+}
+
 /**
- * Builds what changed, migrates a fresh database through the command-line entry, makes the demo if asked, and starts both services on free ports.
+ * Migrates a fresh database through the command-line entry and makes the demo if asked.
+ *
+ * @example
+ * const ground = await layGround({ demo: true });
+ * const installation = await installOn(ground);
+ */
+export async function layGround({ demo, environment = {} }: InstallationOptions): Promise<Ground> {
+  await ensureBuilt('server');
+  const server = await testServer();
+  const database = groundName();
+  await asOwner(server, (client) => client.query(`CREATE DATABASE "${database}"`));
+  const { path: folder, keysFile } = createTestDataFolder();
+  const bare = { database, folder, keysFile };
+  try {
+    const env = { ...(await environmentOf(bare)), TALLYSTONE_DEMO: demo ? '1' : '', ...environment };
+    await run(process.execPath, [join(distribution, 'cli', 'migrate.js')], {
+      cwd: root,
+      env: { ...env, DATABASE_OWNER_URL: inDatabase(server.ownerUrl, database) },
+    });
+    if (!demo) return { ...bare, signIns: [] };
+    const { stdout } = await run(process.execPath, [join(distribution, 'cli', 'demo.js')], {
+      cwd: root,
+      env,
+      maxBuffer: 1 << 26,
+    });
+    const { signIns } = JSON.parse(stdout.trim().split('\n').at(-1) ?? '') as { signIns: SignIn[] };
+    return { ...bare, signIns };
+  } catch (error) {
+    await remove(bare);
+    throw error;
+  }
+}
+
+/**
+ * Builds what changed, lays the ground and starts both services on free ports.
  *
  * @example
  * const installation = await install({ demo: true });
  * await fetch(`${installation.url}health/ready`);
  * await installation.stop();
  */
-export async function install({ demo, environment = {} }: InstallationOptions): Promise<Installation> {
+export async function install(options: InstallationOptions): Promise<Installation> {
+  return installOn(await layGround(options), options.environment);
+}
+
+/** Starts both services on ground that has been laid, by this process or by one before it. Stopping takes the ground away. */
+export async function installOn(ground: Ground, environment: InstallationOptions['environment'] = {}): Promise<Installation> {
   await Promise.all([ensureBuilt('server'), ensureBuilt('web')]);
-  const server = await testServer();
-  const name = databaseName();
-  await asOwner(server, (client) => client.query(`CREATE DATABASE "${name}"`));
-  const folder = createTestDataFolder();
   const port = await freePort();
-  const ownerUrl = inDatabase(server.ownerUrl, name);
   const env: NodeJS.ProcessEnv = {
-    ...process.env,
-    NODE_ENV: 'production',
+    ...(await environmentOf(ground)),
     HOST: '127.0.0.1',
     PORT: String(port),
-    DATABASE_URL: inDatabase(server.appUrl, name),
-    TALLYSTONE_DATA: folder.path,
-    TALLYSTONE_KEYS: folder.keysFile,
-    TALLYSTONE_DEMO: demo ? '1' : '',
+    TALLYSTONE_DEMO: ground.signIns.length > 0 ? '1' : '',
     TALLYSTONE_WEB: join(root, 'dist', 'web', 'browser'),
-    TALLYSTONE_SERVER_DIST: distribution,
     ...environment,
   };
   const running = new Map<Service, ChildProcess>();
   const start = async (service: Service): Promise<Ready> => {
-    const { child, ready } = await launch(service, env, join(folder.path, `${service}.log`));
+    const { child, ready } = await launch(service, env, join(ground.folder, `${service}.log`));
     running.set(service, child);
     return ready;
   };
   const stop = async (): Promise<void> => {
     await Promise.all([...running.values()].map((child) => end(child, 'SIGTERM')));
-    await dropDatabase(server, name);
-    folder.remove();
+    await remove(ground);
   };
   try {
-    await run(process.execPath, [join(distribution, 'cli', 'migrate.js')], {
-      cwd: root,
-      env: { ...env, DATABASE_OWNER_URL: ownerUrl },
-    });
-    let signIns: SignIn[] = [];
-    if (demo) {
-      const { stdout } = await run(process.execPath, [join(distribution, 'cli', 'demo.js')], {
-        cwd: root,
-        env,
-        maxBuffer: 1 << 26,
-      });
-      signIns = (JSON.parse(stdout.trim().split('\n').at(-1) ?? '') as { signIns: SignIn[] }).signIns;
-    }
     const [web] = await Promise.all([start('web'), start('worker')]);
+    const server = await testServer();
     return {
       url: web.url ?? `http://127.0.0.1:${port}/`,
-      appUrl: inDatabase(server.appUrl, name),
-      ownerUrl,
-      dataFolder: folder.path,
-      signIns,
+      appUrl: inDatabase(server.appUrl, ground.database),
+      ownerUrl: inDatabase(server.ownerUrl, ground.database),
+      dataFolder: ground.folder,
+      signIns: ground.signIns,
       setUp: web.setUp ?? null,
       kill: (service) => end(running.get(service), 'SIGKILL'),
       start: (service) => start(service).then(() => undefined),

@@ -27,6 +27,9 @@ export function inDatabase(url: string, name: string): string {
 /** A name that tells which process made the database, so that one whose process is gone can be dropped. */
 export const databaseName = (): string => `test_${process.pid}_${randomBytes(5).toString('hex')}`;
 
+/** For what outlives the process that makes it: nobody drops it but whoever takes it over. */
+export const groundName = (): string => `ground_${randomBytes(5).toString('hex')}`;
+
 /** Runs work on a connection of the owner to the server's maintenance database. */
 export async function asOwner<T>(server: TestServer, work: (client: Client) => Promise<T>): Promise<T> {
   const client = new Client({ connectionString: server.ownerUrl });
