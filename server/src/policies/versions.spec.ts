@@ -50,11 +50,22 @@ describe('validation', () => {
 });
 
 describe('withdrawing', () => {
-  const waiting = { ...concluded, concluded: false } as const;
+  const waiting = {
+    ...concluded,
+    concluded: false,
+    model: { memberIds: ['author', 'both', 'sender'] },
+    submittedBy: 'sender',
+  } as unknown as VersionStanding;
 
-  it('is for modellers of the model until the validator concludes', () => {
-    expect(canActOnVersion(person('both', 'modeller'), waiting, 'withdraw').allowed).toBe(true);
-    expect(canActOnVersion(person('both', 'modeller'), concluded, 'withdraw').allowed).toBe(false);
+  it('is for its modellers until the validator concludes', () => {
+    for (const id of ['author', 'sender']) {
+      expect(canActOnVersion(person(id, 'modeller'), waiting, 'withdraw').allowed).toBe(true);
+      expect(canActOnVersion(person(id, 'modeller'), { ...waiting, concluded: true }, 'withdraw').allowed).toBe(false);
+    }
+    expect(canActOnVersion(person('both', 'modeller'), waiting, 'withdraw')).toMatchObject({
+      allowed: false,
+      reason: 'You had no hand in this version: whoever developed or submitted it can withdraw it.',
+    });
     expect(canActOnVersion(person('stranger', 'modeller'), waiting, 'withdraw').allowed).toBe(false);
     expect(canActOnVersion(person('both', 'validator'), waiting, 'withdraw').allowed).toBe(false);
   });

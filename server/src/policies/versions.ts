@@ -21,7 +21,8 @@ export interface VersionStanding extends RestsOnRows {
 export const canReadVersion = (person: Actor, version: VersionStanding): Decision => canReadModel(person, version.model);
 
 const stands = (version: VersionStanding, ...states: ModelState[]): boolean => states.includes(version.state);
-const wrongState = (version: VersionStanding, act: string): Decision => forbidden(`A version that is "${version.state}" cannot be ${act}.`);
+const wrongState = (version: VersionStanding, act: string): Decision =>
+  forbidden(`A version that is "${version.state}" cannot be ${act}.`);
 
 /** Whoever developed, fitted or submitted a version can neither validate nor approve it. */
 function separate(person: Actor, version: VersionStanding, from: 'validate' | 'sign'): Decision {
@@ -40,6 +41,9 @@ export function canActOnVersion(person: Actor, version: VersionStanding, act: Ex
     case 'withdraw': {
       const develops = canDevelopModel(person, version.model);
       if (!develops.allowed) return develops;
+      // Its modellers, not every modeller of the model: who had no hand in it does not take it out of somebody's review.
+      if (version.submittedBy !== person.id && !version.developedBy.has(person.id))
+        return forbidden('You had no hand in this version: whoever developed or submitted it can withdraw it.');
       if (!stands(version, 'Submitted', 'In validation')) return wrongState(version, 'withdrawn');
       return version.concluded ? forbidden('The validator has concluded: this version can no longer be withdrawn.') : allowed;
     }
@@ -70,7 +74,8 @@ function canSign(person: Actor, version: VersionStanding): Decision {
   if (!person.roles.includes('compliance')) return forbidden('Compliance does this.');
   const apart = separate(person, version, 'sign');
   if (!apart.allowed) return apart;
-  if (version.validators.has(person.id)) return forbidden('You validated this version: someone else has to sign it for compliance.');
+  if (version.validators.has(person.id))
+    return forbidden('You validated this version: someone else has to sign it for compliance.');
   if (!stands(version, 'In validation')) return wrongState(version, 'signed');
   return version.concluded ? allowed : forbidden('The validator has not concluded yet.');
 }
@@ -95,7 +100,9 @@ export function canWriteTexts(person: Actor, version: VersionStanding): Decision
 export function canMakeDocument(person: Actor, version: VersionStanding): Decision {
   const seen = canReadVersion(person, version);
   if (!seen.allowed) return seen;
-  const may = canDevelopModel(person, version.model).allowed || person.roles.some((role) => role === 'validator' || role === 'compliance' || role === 'auditor');
+  const may =
+    canDevelopModel(person, version.model).allowed ||
+    person.roles.some((role) => role === 'validator' || role === 'compliance' || role === 'auditor');
   return may ? allowed : hidden;
 }
 
