@@ -383,7 +383,11 @@ describe('the whole line on the Statlog German Credit data', () => {
     const result = JSON.parse((await modeller.get(`/api/versions/${versionId}/result`).expect(200)).text) as Result;
     expect(text.replace(/\s+/g, '')).toContain(version.fingerprint);
     expect(text).toContain('Review after a year');
-    const printed = (value: number, decimals: number): string => value.toFixed(decimals).replace('-', '\u2212');
+    const printed = (value: number, decimals: number): string => {
+      const text = Math.abs(value).toFixed(decimals);
+      // No sign before what rounds to zero.
+      return value < 0 && Number(text) > 0 ? `\u2212${text}` : text;
+    };
     const { development, holdOut } = result.metrics;
     const measured: [string, (of: ResultMetrics) => string][] = [
       ['AUC', ({ auc }) => printed(auc, 3)],
