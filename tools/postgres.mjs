@@ -370,7 +370,7 @@ function settings(test) {
     test ? 'max_connections = 250' : 'max_connections = 120',
   ];
   // A test database may be lost at any time, so it need not survive a power cut.
-  if (test) lines.push('fsync = off', 'synchronous_commit = off', 'full_page_writes = off', 'autovacuum = off');
+  if (test) lines.push('fsync = off', 'synchronous_commit = off', 'full_page_writes = off', 'autovacuum_naptime = 10min');
   return `${lines.join('\n')}\n`;
 }
 

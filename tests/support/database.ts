@@ -87,6 +87,6 @@ export async function createTestDatabase(): Promise<TestDatabase> {
     name,
     appUrl: inDatabase(server.appUrl, name),
     ownerUrl: inDatabase(server.ownerUrl, name),
-    drop: () => dropDatabase(server, name).then(() => undefined),
+    drop: () => dropDatabase(server, name),
   };
 }

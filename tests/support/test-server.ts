@@ -41,6 +41,22 @@ export async function asOwner<T>(server: TestServer, work: (client: Client) => P
   }
 }
 
-/** Ends what is still connected to a database and drops it. */
-export const dropDatabase = (server: TestServer, name: string): Promise<unknown> =>
-  asOwner(server, (client) => client.query(`DROP DATABASE IF EXISTS "${name}" WITH (FORCE)`));
+const DROP_TRIES = 50;
+
+/**
+ * Ends what is still connected to a database and drops it. A session that has not yet said who it is may be ended by superusers alone (PostgreSQL 15,
+ * TerminateOtherDBBackends): a moment later it has, or is gone.
+ */
+export async function dropDatabase(server: TestServer, name: string): Promise<void> {
+  await asOwner(server, async (client) => {
+    for (let tries = 1; ; tries++) {
+      try {
+        await client.query(`DROP DATABASE IF EXISTS "${name}" WITH (FORCE)`);
+        return;
+      } catch (cause) {
+        if (tries === DROP_TRIES || (cause as { code?: string }).code !== '42501') throw cause;
+        await new Promise((resolve) => setTimeout(resolve, 100));
+      }
+    }
+  });
+}
