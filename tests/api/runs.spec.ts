@@ -130,6 +130,32 @@ describe('a run', () => {
     expect(await counted(id)).toEqual(['0 abandoned cancelled']);
   });
 
+  it('that is being written about is cancelled all the same: the request waits, and is told when it waited in vain', async () => {
+    const id = await begin({ steps: 1, pause: 1 });
+    const writer = await owner.connect();
+    const hold = () => writer.query('BEGIN').then(() => writer.query('SELECT 1 FROM runs WHERE id = $1 FOR UPDATE', [id]));
+    try {
+      await hold();
+      const asked = Date.now();
+      const refused = await marian.post(`/api/runs/${id}/cancel`).send({}).expect(503);
+      expect(Date.now() - asked).toBeLessThan(5000);
+      expect(refused.body.detail).toContain('Cancel it again in a few seconds.');
+      expect((await read(id)).state).toBe('queued');
+      await writer.query('COMMIT');
+
+      await hold();
+      const [answer] = await Promise.all([
+        marian.post(`/api/runs/${id}/cancel`).send({}).expect(200),
+        new Promise((resolve) => setTimeout(resolve, 200)).then(() => writer.query('COMMIT')),
+      ]);
+      expect(answer.body.state).toBe('cancelling');
+    } finally {
+      writer.release();
+    }
+    await workHere();
+    await until(id, ({ state }) => state === 'cancelled');
+  });
+
   it('that waits in the queue is cancelled by any worker', async () => {
     const id = await begin({ steps: 400, pause: 100 });
     await marian.post(`/api/runs/${id}/cancel`).send({}).expect(200);

@@ -24,6 +24,17 @@ export async function expectLoaded(page: Page, { heading, model, loaded }: Expec
   await expect(page.locator('[role=progressbar], [aria-busy=true], p[role=status].ts-second')).toHaveCount(0);
 }
 
+/**
+ * Opens an address. Where the client is open already this is as its own links do it, and the client is not loaded anew: most of the time of
+ * a visit went into that. The first page of a room, and the same address once more, are loaded as from the address bar.
+ */
+export async function openAddress(page: Page, address: string): Promise<void> {
+  const from = page.url();
+  if (!from.startsWith('http') || new URL(address, from).pathname === new URL(from).pathname)
+    return void (await page.goto(address));
+  await page.evaluate(`history.pushState(null, '', ${JSON.stringify(address)}); dispatchEvent(new PopStateEvent('popstate'));`);
+}
+
 /** Sets the width and the scheme of the page that is open and waits until figures have been drawn anew. */
 export async function present(page: Page, size: typeof wide, scheme: Scheme): Promise<void> {
   await page.setViewportSize(size);
