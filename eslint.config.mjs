@@ -15,7 +15,7 @@ const reasons = {
       create: (context) => ({
         Program() {
           for (const comment of context.sourceCode.getAllComments()) {
-            const directive = /^\s*(eslint-disable(?:-next-line|-line)?)\b/.exec(comment.value)?.[1];
+            const directive = /^\s*((?:es|ox)lint-disable(?:-next-line|-line)?)\b/.exec(comment.value)?.[1];
             if (directive && !/\s--\s+\S/.test(comment.value))
               context.report({ loc: comment.loc, messageId: 'missing', data: { directive } });
           }
@@ -33,11 +33,7 @@ const hostNames = [
 ]; // prettier-ignore
 const noHost = hostNames.map((name) => ({ name, message: 'Code in libs/ belongs to neither the browser nor Node.js.' }));
 
-const typed = {
-  languageOptions: { parserOptions: { projectService: true, tsconfigRootDir: import.meta.dirname } },
-};
-
-/** What holds for every TypeScript file. */
+/** What holds for every TypeScript file; the rules that need types stand in .oxlintrc.json. */
 const strictness = {
   '@typescript-eslint/no-explicit-any': 'error',
   '@typescript-eslint/consistent-type-imports': ['error', { fixStyle: 'inline-type-imports', disallowTypeAnnotations: false }],
@@ -45,19 +41,6 @@ const strictness = {
     'error',
     { argsIgnorePattern: '^_', varsIgnorePattern: '^_', caughtErrors: 'none', ignoreRestSiblings: true },
   ],
-  '@typescript-eslint/no-floating-promises': [
-    'error',
-    { allowForKnownSafeCalls: [{ from: 'package', package: 'node:test', name: ['it'] }] },
-  ],
-  '@typescript-eslint/switch-exhaustiveness-check': ['error', { considerDefaultExhaustiveForUnions: true }],
-  '@typescript-eslint/restrict-template-expressions': ['error', { allowNumber: true, allowBoolean: true }],
-  '@typescript-eslint/require-await': 'off',
-  // Objects of plain functions are taken apart in many places here, and none of them uses `this`.
-  '@typescript-eslint/unbound-method': 'off',
-  // What a callback reports is passed on as it came.
-  '@typescript-eslint/prefer-promise-reject-errors': 'off',
-  '@typescript-eslint/only-throw-error': 'error',
-  '@typescript-eslint/no-misused-promises': ['error', { checksVoidReturn: { arguments: false, attributes: false } }],
   eqeqeq: ['error', 'always', { null: 'ignore' }],
   'no-console': 'error',
   'no-warning-comments': ['error', { terms: ['todo', 'fixme', 'xxx', 'hack'], location: 'start' }],
@@ -116,18 +99,9 @@ export default tseslint.config(
   // --- TypeScript everywhere
   {
     files: ['**/*.ts', '**/*.mts'],
-    extends: [js.configs.recommended, tseslint.configs.recommendedTypeChecked],
-    ...typed,
+    extends: [js.configs.recommended, tseslint.configs.recommended],
     rules: strictness,
   },
-  // Configuration files and declarations beside JavaScript lie outside every tsconfig.
-  {
-    files: ['*.ts', 'tools/**/*.mts'],
-    extends: [tseslint.configs.disableTypeChecked],
-    languageOptions: { parserOptions: { projectService: false } },
-    rules: { '@typescript-eslint/no-misused-promises': 'off', '@typescript-eslint/no-floating-promises': 'off' },
-  },
-
   // --- Libraries: neither browser nor Node.js
   { files: ['libs/**/*.ts'], ignores: ['**/*.spec.ts'], rules: { 'no-restricted-globals': ['error', ...noHost] } },
   {
@@ -148,11 +122,6 @@ export default tseslint.config(
   {
     files: ['**/*.spec.ts', 'tests/**/*.ts', '**/testing/**/*.ts'],
     rules: {
-      '@typescript-eslint/no-unsafe-assignment': 'off',
-      '@typescript-eslint/no-unsafe-member-access': 'off',
-      '@typescript-eslint/no-unsafe-argument': 'off',
-      '@typescript-eslint/no-unsafe-call': 'off',
-      '@typescript-eslint/no-unsafe-return': 'off',
       '@typescript-eslint/no-non-null-assertion': 'off',
     },
   },

@@ -90,9 +90,9 @@ export function steps({ work, long, filter }) {
     },
     {
       name: 'types',
-      title: 'Types of libraries, server and tests',
+      title: 'Types, and the rules that need them',
       slots: 1,
-      command: [...bin('typescript/bin/tsc'), '--noEmit', '-p', 'tsconfig.json'],
+      command: [...bin('oxlint/bin/oxlint'), '--type-check'],
       count: oneCheck,
     },
     {

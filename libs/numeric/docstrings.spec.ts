@@ -69,7 +69,7 @@ describe('public functions', () => {
   const all = running.flatMap((name) => examplesOf(docstrings.get(name) ?? '').map((example) => ({ name, ...example })));
   it.each(all)('$name: $code', ({ name, code, says }) => {
     const own = scopeOf(name);
-    // eslint-disable-next-line @typescript-eslint/no-implied-eval -- the text of the docstring is the code under test
+    // oxlint-disable-next-line typescript/no-implied-eval -- the text of the docstring is the code under test
     const value: unknown = new Function(...Object.keys(own), `return (${code});`)(...Object.values(own));
     expect(value).not.toBeUndefined();
     // Figures in words ("for instance", "the fit's own objective") are not compared.

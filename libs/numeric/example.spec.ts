@@ -9,7 +9,7 @@ describe('the example of the README', () => {
   it('runs as printed', () => {
     const printed: unknown[] = [];
     const names = Object.keys(numeric);
-    // eslint-disable-next-line @typescript-eslint/no-implied-eval -- the text of the README is the code under test
+    // oxlint-disable-next-line typescript/no-implied-eval -- the text of the README is the code under test
     const body = new Function(...names, 'console', example);
     body(...names.map((name) => (numeric as Record<string, unknown>)[name]), {
       log: (...values: unknown[]) => printed.push(...values),
