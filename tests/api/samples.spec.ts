@@ -203,7 +203,13 @@ describe('a sample from its file to its definition', () => {
       expect(waterfall[place].left).toBe(waterfall[place - 1].left - waterfall[place].out);
     expect(waterfall.at(-1)).toMatchObject({ kind: 'development', left: partitions.development.rows });
     // Every thirtieth row from 0 is a member of staff; of these 0, 210, 420 are declined and 0, 90, 180, ... bad.
-    expect(waterfall[1]).toMatchObject({ kind: 'exclusion', label: 'staff loans', out: 20 });
+    expect(waterfall[1]).toMatchObject({ kind: 'exclusion', label: 'staff loans', out: 20, outGoods: 11, outBads: 6 });
+    // Goods and bads reconcile as rows do: what went into a partition is what its counts say, out-of-time not told while it is covered.
+    const stepOf = (kind: string) => waterfall.find((step: { kind: string }) => step.kind === kind);
+    const { rows, goods, bads } = partitions.holdOut;
+    expect(stepOf('hold-out')).toMatchObject({ out: rows, outGoods: goods, outBads: bads });
+    expect(stepOf('out-of-time')).toMatchObject({ out: partitions.outOfTime.rows, outGoods: null, outBads: null });
+    expect(stepOf('declined')).toMatchObject({ out: declined, outGoods: null, outBads: null });
     expect(partitions.outOfTime).toMatchObject({ covered: true, bads: null, badRate: null });
     expect(partitions.outOfTime.rows).toBeGreaterThan(0);
     expect(declined).toBeGreaterThan(0);

@@ -142,6 +142,18 @@ test('the same by keys: moved, taken out, typed; undone and redone', async ({ pa
   await expect.poll(() => bench.valueOf(cut)).toBe(moved + 0.5);
   await bench.saved();
   await expect.poll(async () => (await bench.stored()).current).toMatchObject({ edges: expect.arrayContaining([moved + 0.5]) });
+
+  // A bin is merged with the next and split again; the letter a leads to the field for a new cut.
+  const head = bench.bins.getByRole('columnheader').getByRole('button').first();
+  await head.focus();
+  await page.keyboard.press('m');
+  await expect(bench.cuts()).toHaveCount(count - 1);
+  await head.focus();
+  await page.keyboard.press('s');
+  await expect(bench.cuts()).toHaveCount(count);
+  await expect(bench.edits).toContainText(/Split .* at /);
+  await page.keyboard.press('a');
+  await expect(page.getByRole('spinbutton', { name: 'New cut at' })).toBeFocused();
   await bench.reset();
 });
 

@@ -75,6 +75,7 @@ export const warningCodes = [
   'reversed-out-of-time',
   'unstable-in-hold-out',
   'unstable-out-of-time',
+  'unstable-by-month',
   'high-information-value',
   'one-bin',
 ] as const;

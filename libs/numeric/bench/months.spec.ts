@@ -2,7 +2,9 @@ import { describe, expect, it } from 'vitest';
 import { weightOfEvidence } from '../binning/weight-of-evidence';
 import { Generator } from '../random/generator';
 import { monthlyDrift, quarterOf, readPeriods, type MonthCounts } from './months';
+import { readBench } from './reading';
 import type { FineClasses } from './types';
+import { benchWarnings, largeMonthlyDrift } from './warnings';
 
 /** Four fine classes, missing; the counts themselves are not looked at here. */
 const nothing = { rows: [0, 0, 0, 0, 0], goods: [0, 0, 0, 0, 0], bads: [0, 0, 0, 0, 0] };
@@ -140,6 +142,34 @@ describe('how far WOE moves between months', () => {
     expect(seen.freedom).toBe(1);
     expect(seen.statistic).toBeCloseTo(25, 9);
     expect(seen.deviation).toBeCloseTo(Math.sqrt(24 / (64 / 4)), 9);
+  });
+
+  it('is warned of where it is large and beyond chance, and not otherwise', () => {
+    const sums = (side: 'rows' | 'goods' | 'bads', drawn: readonly MonthCounts[]) =>
+      drawn.reduce((total, month) => total.map((value, slot) => value + month[side][slot]), [0, 0, 0, 0, 0]);
+    const limits = { smallestShare: 0, smallestGoods: 0, smallestBads: 0 };
+    const warned = (drawn: readonly MonthCounts[]) => {
+      const development = { rows: sums('rows', drawn), goods: sums('goods', drawn), bads: sums('bads', drawn) };
+      const reading = readBench({ ...fine, development }, bins);
+      return benchWarnings(reading, limits, monthlyDrift(fine, bins, { development: drawn, holdOut: [] }));
+    };
+    const drawn = months(11, 30, 400, 0.5);
+    const seen = monthlyDrift(fine, bins, { development: drawn, holdOut: [] })!;
+    expect(seen.deviation).toBeGreaterThan(largeMonthlyDrift);
+    expect(warned(drawn).find(({ code }) => code === 'unstable-by-month')?.message).toBe(
+      `WOE moves from month to month by ±${seen.deviation.toFixed(2)} beyond chance, over 30 months (from ±0.20 to be looked at).`,
+    );
+    expect(warned(months(11, 30, 400, 0)).map(({ code }) => code)).not.toContain('unstable-by-month');
+    // Beyond chance with so many rows, but small.
+    const small = months(12, 30, 4000, 0.1);
+    expect(monthlyDrift(fine, bins, { development: small, holdOut: [] })!.beyondChance).toBe(true);
+    expect(warned(small).map(({ code }) => code)).not.toContain('unstable-by-month');
+    // Large in few rows, but no more than chance.
+    const few = Array.from({ length: 40 }, (_, seed) => months(seed + 1, 6, 30, 0)).find((one) => {
+      const { deviation, beyondChance } = monthlyDrift(fine, bins, { development: one, holdOut: [] })!;
+      return deviation >= largeMonthlyDrift && !beyondChance;
+    })!;
+    expect(warned(few).map(({ code }) => code)).not.toContain('unstable-by-month');
   });
 
   it('cannot be told from one month, one bin, or one outcome', () => {

@@ -1,4 +1,5 @@
 import type { BenchReading, BinFigures } from './reading';
+import type { MonthlyDrift } from './months';
 import { isUnstable, largeChange, stabilityWords } from './stability';
 import type { PartitionName } from './types';
 
@@ -16,6 +17,7 @@ export type WarningCode =
   | 'reversed-out-of-time'
   | 'unstable-in-hold-out'
   | 'unstable-out-of-time'
+  | 'unstable-by-month'
   | 'high-information-value'
   | 'one-bin';
 
@@ -28,14 +30,21 @@ export interface BenchWarning {
 
 /** Above this an information value asks for a look at leakage. Siddiqi 2006, from memory; lender policy. */
 export const leakageSuspect = 0.5;
+/**
+ * From here on WOE that moves from month to month asks for a look: at a coefficient of 1 and 20 points to double the odds about 6 points between one month
+ * and the next. A limit of this product, the lender's to set; it has no source.
+ */
+export const largeMonthlyDrift = 0.2;
 /** One-sided 5 % point of the normal distribution: what is smaller is what chance does. */
 export const onesidedPoint = 1.6449;
 
 /**
  * What a careful analyst would look at in the bins of one characteristic. Special and missing bins are as large as they are, so only bins of
  * cuts and groups count as small.
+ *
+ * @param drift how far WOE moves between months; null where that cannot be told
  */
-export function benchWarnings(reading: BenchReading, limits: SizeLimits): BenchWarning[] {
+export function benchWarnings(reading: BenchReading, limits: SizeLimits, drift: MonthlyDrift | null = null): BenchWarning[] {
   const warnings: BenchWarning[] = [];
   const filled = reading.bins.filter((bin) => (bin.figures.development?.rows ?? 0) > 0);
   if (filled.length < 2) {
@@ -93,6 +102,13 @@ export function benchWarnings(reading: BenchReading, limits: SizeLimits): BenchW
     warnings.push({
       code,
       message: `CSI of ${stabilityWords[partition]} against development is ${index.toFixed(2)}, ${size} change (common practice: from 0.10, from 0.25).`,
+      bins: [],
+    });
+  }
+  if (drift?.beyondChance && drift.deviation >= largeMonthlyDrift) {
+    warnings.push({
+      code: 'unstable-by-month',
+      message: `WOE moves from month to month by ±${drift.deviation.toFixed(2)} beyond chance, over ${drift.months} months (from ±${largeMonthlyDrift.toFixed(2)} to be looked at).`,
       bins: [],
     });
   }

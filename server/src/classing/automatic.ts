@@ -99,7 +99,8 @@ export interface Counted {
 /** What the list shows about a characteristic: the browser's own calculation, made on the server. */
 export function summarise({ fine, outOfTime, months }: Counted, bins: Bins, constraints: Constraints): Summarised {
   const reading = readBench({ ...fine, outOfTime }, bins);
-  const warnings = benchWarnings(reading, constraints).map((warning) => ({ ...warning, bins: [...warning.bins] }));
+  const drift = months ? monthlyDrift(fine, bins, months) : null;
+  const warnings = benchWarnings(reading, constraints, drift).map((warning) => ({ ...warning, bins: [...warning.bins] }));
   return {
     summary: {
       informationValue: reading.informationValue,
@@ -110,7 +111,7 @@ export function summarise({ fine, outOfTime, months }: Counted, bins: Bins, cons
       bins: reading.bins.length,
       trend: reading.trend,
       csiHoldOut: reading.stability.holdOut,
-      ...(months === undefined ? {} : { monthlyDrift: months && (monthlyDrift(fine, bins, months)?.deviation ?? null) }),
+      ...(months === undefined ? {} : { monthlyDrift: drift?.deviation ?? null }),
       warnings: warnings.filter(({ code }) => !ofOutOfTime.has(code)),
     },
     outOfTimeWarnings: warnings.filter(({ code }) => ofOutOfTime.has(code)),

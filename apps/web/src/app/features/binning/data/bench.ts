@@ -3,6 +3,7 @@ import type { EditReason } from '@tallystone/contracts/binnings/edits';
 import {
   addCut,
   benchWarnings,
+  type MonthlyDrift,
   moveCut,
   readBench,
   type BenchReading,
@@ -55,6 +56,8 @@ export class Bench {
   private readonly problemOf = signal<unknown>(null);
   private readonly savedAtOf = signal<string | null>(null);
 
+  private readonly driftOf = signal<MonthlyDrift | null>(null);
+
   readonly detail = this.detailOf.asReadonly();
   readonly history = this.historyOf.asReadonly();
   readonly state = this.stateOf.asReadonly();
@@ -83,7 +86,7 @@ export class Bench {
   readonly warnings = computed<readonly BenchWarning[]>(() => {
     const reading = this.reading();
     const detail = this.detailOf();
-    return reading && detail ? benchWarnings(reading, detail.constraints) : [];
+    return reading && detail ? benchWarnings(reading, detail.constraints, this.driftOf()) : [];
   });
 
   async load(binningId: string, characteristicId: string): Promise<void> {
@@ -96,12 +99,18 @@ export class Bench {
     this.historyOf.set(null);
     this.theirsOf.set(null);
     this.problemOf.set(null);
+    this.driftOf.set(null);
     try {
       const tagged = await this.binnings.readCharacteristic(binningId, characteristicId);
       if (this.address?.characteristicId === characteristicId) this.take(tagged);
     } catch (error) {
       this.problemOf.set(error);
     }
+  }
+
+  /** How far WOE moves between months, told when their counts have come: they come by themselves. */
+  moves(drift: MonthlyDrift | null): void {
+    this.driftOf.set(drift);
   }
 
   /** Shows where a drag would lead; nothing is an edit before it is let go. */

@@ -1,7 +1,14 @@
-import { ChangeDetectionStrategy, Component, computed, effect, input } from '@angular/core';
+import { ChangeDetectionStrategy, Component, computed, effect, input, output } from '@angular/core';
 import { toObservable, toSignal } from '@angular/core/rxjs-interop';
 import { MatButtonModule } from '@angular/material/button';
-import { fewestToRead, type BenchReading, type Bins, type FineClasses } from '@tallystone/numeric/bench';
+import {
+  fewestToRead,
+  monthlyDrift,
+  type BenchReading,
+  type Bins,
+  type FineClasses,
+  type MonthlyDrift,
+} from '@tallystone/numeric/bench';
 import { debounceTime } from 'rxjs';
 import { ProblemList } from '../../../ui/problem-list';
 import { count, plural } from '../../../ui/numbers';
@@ -60,6 +67,8 @@ export class BenchMonths {
   readonly fine = input.required<FineClasses>();
   readonly bins = input.required<Bins>();
   readonly reading = input.required<BenchReading>();
+  /** How far WOE moves between months, with the bins as they rest; null where that cannot be told. */
+  readonly drifts = output<MonthlyDrift | null>();
 
   protected readonly fewest = fewestToRead;
   protected readonly months = monthsOf(
@@ -83,6 +92,10 @@ export class BenchMonths {
   );
 
   constructor() {
+    effect(() => {
+      const shown = this.shown();
+      this.drifts.emit(shown?.dateColumn ? monthlyDrift(this.drawn().fine, this.drawn().bins, shown) : null);
+    });
     // A fine class was split, or out-of-time was opened: the counts are others now.
     let before = '';
     effect(() => {

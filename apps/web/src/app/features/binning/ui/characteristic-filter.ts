@@ -54,6 +54,7 @@ const warningWords: Record<CharacteristicSummary['warnings'][number]['code'], st
   'reversed-out-of-time': 'reversed out of time',
   'unstable-in-hold-out': 'unstable in hold-out',
   'unstable-out-of-time': 'unstable out of time',
+  'unstable-by-month': 'unstable by month',
   'high-information-value': 'check for leakage',
   'one-bin': 'one bin',
 };

@@ -20,6 +20,7 @@ import { Tombstone } from '../../../ui/tombstone';
 import { type ColumnQuality, Samples, columnQualityOf, oneSample, qualityOf } from '../data/samples';
 import { plain } from '../ui/findings';
 import { type AskedAnswer, QualityFlags } from '../ui/quality-flags';
+import { QualityGroupMonths } from '../ui/quality-group-months';
 import { QualityGroups } from '../ui/quality-groups';
 import { QualityHistogram } from '../ui/quality-histogram';
 import { type MonthValue, QualityMonths } from '../ui/quality-months';
@@ -42,6 +43,7 @@ import { SampleSteps } from '../ui/sample-steps';
     PageHeader,
     ProblemList,
     QualityFlags,
+    QualityGroupMonths,
     QualityGroups,
     QualityHistogram,
     QualityMonths,
@@ -207,7 +209,6 @@ export class QualityPage {
     );
     if (state) this.state.set(state);
   }
-
 }
 
 const at = ({ quantiles }: ColumnQuality, wanted: number): number | null =>
