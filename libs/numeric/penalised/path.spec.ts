@@ -113,6 +113,23 @@ describe('what data can do to a fit is a status', () => {
     expect([fit.status, fit.coefficients[0]]).toEqual(['converged', 2]);
   });
 
+  it('a reference bin without bads: the indicators of all other bins and the intercept run apart', () => {
+    const bin = Array.from({ length: 2000 }, (_, row) => row % 4);
+    const outcome = Uint8Array.from(bin, (b, row) => (b === 0 || row % 7 > b ? 1 : 0));
+    const indicator = (value: number): Float64Array => Float64Array.from(bin, (b) => (b === value ? 1 : 0));
+    const noise = Float64Array.from(bin, (_, row) => Math.sin(row));
+    const free = { ...lasso, multipliers: Float64Array.of(0, 0, 0, 1) };
+    const problem: FitProblem = { columns: [indicator(1), indicator(2), indicator(3), noise], outcome, penalty: free };
+    for (const lambda of [0, 0.001, 0.1]) expect(fitAt(problem, lambda).status).toBe('separation');
+    // With one indicator left out the bins share an intercept that is finite.
+    expect(
+      fitAt(
+        { ...problem, columns: problem.columns.slice(1), penalty: { ...lasso, multipliers: Float64Array.of(0, 0, 1) } },
+        0.001,
+      ).status,
+    ).toBe('converged');
+  });
+
   it('a strong but finite predictor is not called separated', () => {
     const x = Array.from({ length: 200 }, (_, i) => i - 99.5);
     const y = x.map((v, i) => (i === 98 ? 1 : i === 101 ? 0 : v > 0 ? 1 : 0));

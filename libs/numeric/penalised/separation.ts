@@ -19,14 +19,24 @@ interface Unpenalised {
 const LONG_STEP = 0.01;
 
 /**
+ * What lets columns that depend on each other be factorised, relative to the diagonal. The larger is safe from rounding; but far out, where the rows of a
+ * bin have a curvature below it, it makes the long step short: there the smaller one tells, which rounding still leaves a thousandfold.
+ */
+const RIDGES = [1e-9, 1e-13] as const;
+
+/**
  * Whether goods and bads are separated along unpenalised columns, so that no finite optimum exists: the Newton step there is long although the
  * gradient is all but zero, no row's loss rises along it, and no limit stands in its way.
  * Source: A. Albert and J. A. Anderson, On the existence of maximum likelihood estimates in logistic regression models, Biometrika 71, 1984.
  */
 export function isSeparated(at: Unpenalised): boolean {
+  return RIDGES.some((ridge) => isSeparatedAt(at, ridge));
+}
+
+function isSeparatedAt(at: Unpenalised, ridge: number): boolean {
   const size = at.columns.length + 1;
   const factor = at.gram.slice();
-  for (let a = 0; a < size; a++) factor[a * size + a] *= 1 + 1e-9;
+  for (let a = 0; a < size; a++) factor[a * size + a] *= 1 + ridge;
   if (!factorise(factor, size)) return false;
   const step = Float64Array.of(-at.gradientOfIntercept, ...at.gradient.map((g) => -g));
   solveFactorised(factor, size, step);
