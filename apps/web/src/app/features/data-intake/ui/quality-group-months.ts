@@ -6,6 +6,7 @@ import { ElementWidth } from '../../../ui/element-width';
 import { FigureFrame, FigurePoint } from '../../../ui/figure-frame';
 import { binWords, plural, share } from '../../../ui/numbers';
 import { type GroupCell, groupCells, widestMove } from './group-cells';
+import { monthTicks } from './month-ticks';
 
 const rowHeight = 22;
 const axisHeight = 22;
@@ -94,20 +95,7 @@ export class QualityGroupMonths {
         depth: (0.08 + (0.92 * cell.share) / most).toFixed(3),
       }));
   });
-  /** The first month, and those after it as far as there is room. */
-  protected readonly ticks = computed(() => {
-    const months = this.detail().months.map(({ month }) => month);
-    const x = this.x();
-    const every = Math.max(1, Math.ceil(months.length / Math.max(2, Math.floor((this.width() - this.left()) / 90))));
-    return months
-      .map((month, place) => ({ month, place }))
-      .filter(({ place }) => place % every === 0 && place <= months.length - 1 - every / 2)
-      .map(({ month, place }) => ({
-        month: month.replace('-', '\u2011'),
-        x: (x(month) ?? 0) + (place === 0 ? 0 : x.bandwidth() / 2),
-        anchor: place === 0 ? 'start' : 'middle',
-      }));
-  });
+  protected readonly ticks = computed(() => monthTicks(this.x()));
   protected readonly finding = computed(() => {
     const move = widestMove(this.cells());
     if (!move) return 'Too few rows by month to tell how the values move.';

@@ -5,6 +5,7 @@ import { AxisDirective } from '../../../ui/axis';
 import type { Column } from '../../../ui/column';
 import { ElementWidth } from '../../../ui/element-width';
 import { FigureFrame, FigurePoint } from '../../../ui/figure-frame';
+import { monthTicks } from './month-ticks';
 
 /** One bar of a figure by month; null where the month is not told. */
 export interface MonthValue {
@@ -111,18 +112,5 @@ export class QualityMonths {
       height: Math.max(1, y(0) - y(value ?? 0)),
     }));
   });
-  /** The first and last month, and those between as far as there is room. */
-  protected readonly ticks = computed(() => {
-    const months = this.values().map(({ month }) => month);
-    const x = this.x();
-    const every = Math.max(1, Math.ceil(months.length / Math.max(2, Math.floor((this.width() - margin.left) / 90))));
-    return months
-      .map((month, place) => ({ month, place }))
-      .filter(({ place }) => place % every === 0 && place <= months.length - 1 - every / 2)
-      .map(({ month, place }) => ({
-        month: month.replace('-', '\u2011'),
-        x: (x(month) ?? 0) + (place === 0 ? 0 : x.bandwidth() / 2),
-        anchor: place === 0 ? 'start' : 'middle',
-      }));
-  });
+  protected readonly ticks = computed(() => monthTicks(this.x()));
 }
