@@ -28,6 +28,8 @@ export default defineConfig({
     exclude: ['**/node_modules/**', ...(long ? [] : ['**/*.long.spec.ts'])],
     // One process for many files, which shares what they import: importing took longer than testing. Each file opens and closes what it uses.
     isolate: false,
+    // Less is copied from young space to young space: a fortieth of the processor time of all tests.
+    execArgv: ['--max-semi-space-size=32'],
     passWithNoTests: false,
     testTimeout: 30_000,
     hookTimeout: 60_000,
