@@ -30,7 +30,7 @@ const policyOf = (headers: Record<string, string>): Map<string, string[]> =>
 
 describe('the page of the API', () => {
   it('is for people who are signed in, with a policy of its own and files of this server', async () => {
-    const refused = await supertest(server.app).get('/api/page/').expect(401);
+    const refused = await supertest(server.url).get('/api/page/').expect(401);
     expect(refused.body.code).toBe('signed-out');
     const reader = await server.signIn('ada', 'auditor');
     expect((await reader.get('/api/page').expect(308)).headers['location']).toBe('/api/page/');
@@ -49,7 +49,7 @@ describe('the page of the API', () => {
 describe('pages', () => {
   it('have a policy without inline code, and a nonce of their own in the policy and on the root element', async () => {
     const [first, second] = await Promise.all(
-      ['/', '/models/123/fit'].map((path) => supertest(server.app).get(path).expect(200)),
+      ['/', '/models/123/fit'].map((path) => supertest(server.url).get(path).expect(200)),
     );
     const nonces = [first, second].map(({ text }) => /<ts-root ngCspNonce="([^"]+)">/.exec(text)![1]);
     expect(nonces[0]).not.toBe(nonces[1]);
@@ -69,18 +69,18 @@ describe('pages', () => {
   });
 
   it('come with files that are kept as long as their names say, and nothing in place of a missing file', async () => {
-    const script = await supertest(server.app).get('/main-ABCDEF12.js').expect(200);
+    const script = await supertest(server.url).get('/main-ABCDEF12.js').expect(200);
     expect(script.headers['cache-control']).toContain('immutable');
     expect(script.headers['x-content-type-options']).toBe('nosniff');
-    expect((await supertest(server.app).get('/favicon.svg').expect(200)).headers['cache-control']).toBe('no-cache');
-    await supertest(server.app).get('/main-00000000.js').expect(404);
-    await supertest(server.app)
+    expect((await supertest(server.url).get('/favicon.svg').expect(200)).headers['cache-control']).toBe('no-cache');
+    await supertest(server.url).get('/main-00000000.js').expect(404);
+    await supertest(server.url)
       .get('/..%2f..%2fetc/passwd')
       .expect((response) => expect(response.text).not.toContain('root:'));
   });
 
   it('are not what the API answers with, whose policy lets nothing load', async () => {
-    const { headers } = await supertest(server.app).get('/api/session').expect(200);
+    const { headers } = await supertest(server.url).get('/api/session').expect(200);
     expect(headers['content-security-policy']).toBe("default-src 'none';frame-ancestors 'none';base-uri 'none'");
     expect(headers['cache-control']).toBe('no-store');
     expect(headers['x-request-id']).toMatch(/^[\w-]{8,}$/);

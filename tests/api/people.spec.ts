@@ -46,7 +46,7 @@ const waitFor = async <T>(look: () => Promise<T | undefined> | T | undefined): P
 
 /** A browser in front of a page for strangers. */
 async function stranger(): Promise<(path: string, body: object) => supertest.Test> {
-  const agent = supertest.agent(server.app);
+  const agent = supertest.agent(server.url);
   const { headers } = await agent.get('/api/session').expect(200);
   const token = /XSRF-TOKEN=([^;]*)/.exec((headers['set-cookie'] as unknown as string[]).join())![1];
   return (path, body) => agent.post(path).set('X-XSRF-TOKEN', token).send(body);
@@ -63,7 +63,7 @@ describe('the first admin', () => {
     // A restart keeps it.
     expect(await ensureSetUpToken(server.context)).toBe(token);
     const post = await stranger();
-    expect((await supertest(server.app).get('/api/set-up').expect(200)).body).toEqual({ open: true });
+    expect((await supertest(server.url).get('/api/set-up').expect(200)).body).toEqual({ open: true });
     await post('/api/set-up', { ...details, token: 'x'.repeat(43) }).expect(403);
     await post('/api/set-up', { ...details, token, roles: ['admin', 'modeller'] }).expect(422);
     // Two at once: one is made.
@@ -72,11 +72,11 @@ describe('the first admin', () => {
       post('/api/set-up', { ...details, email: 'second@saltmarsh.example', token }),
     ]);
     expect(both.map(({ status }) => status).sort()).toEqual([201, 409]);
-    expect((await supertest(server.app).get('/api/set-up').expect(200)).body).toEqual({ open: false });
+    expect((await supertest(server.url).get('/api/set-up').expect(200)).body).toEqual({ open: false });
     expect(await ensureSetUpToken(server.context)).toBeNull();
     await expect(stat(file)).rejects.toThrow('ENOENT');
     const made = both.find(({ status }) => status === 201)!.body.email as string;
-    admin = new Visitor(supertest.agent(server.app), '');
+    admin = new Visitor(supertest.agent(server.url), '');
     await admin.enter(made);
     expect((await admin.get('/api/session')).body.user.roles).toEqual(['admin']);
   });
@@ -113,7 +113,7 @@ describe('an invitation', () => {
       [1, 2].map(() => post('/api/invitations/accept', { token, name: 'Nadia Newcomer', password: testPassword })),
     );
     expect(both.map(({ status }) => status).sort()).toEqual([201, 404]);
-    const nadia = new Visitor(supertest.agent(server.app), '');
+    const nadia = new Visitor(supertest.agent(server.url), '');
     await nadia.enter('nadia@saltmarsh.example');
     expect((await nadia.get('/api/session')).body.user).toMatchObject({
       name: 'Nadia Newcomer',

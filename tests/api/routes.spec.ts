@@ -159,7 +159,7 @@ describe.each(accessTable.filter(({ route }) => !aboutCredentials.has(route)).ma
   (_route, row) => {
     it('refuses who is signed out or disabled, and treats each role as the table says', async () => {
       const subject: Subject = row.own ? 'own' : row.another ? 'another' : 'nonexistent';
-      const nobody = new Visitor(supertest.agent(server.app), '');
+      const nobody = new Visitor(supertest.agent(server.url), '');
       await nobody.meet();
       const anonymous = row.anonymous ?? 401;
       hold(await statusOf(ask(nobody, row, subject)), anonymous, `anonymous ${row.route}`);
@@ -201,7 +201,7 @@ describe('every change', () => {
 describe('what is not there', () => {
   it('is a problem for the API, whatever the method', async () => {
     for (const method of ['get', 'post', 'put', 'patch', 'delete'] as const) {
-      const { body, headers } = await supertest(server.app)[method]('/api/no-such-thing').expect(404);
+      const { body, headers } = await supertest(server.url)[method]('/api/no-such-thing').expect(404);
       expect(headers['content-type']).toContain('application/problem+json');
       expect(body).toMatchObject({ status: 404, code: 'not-found', problems: [] });
     }

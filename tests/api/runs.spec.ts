@@ -1,6 +1,4 @@
 import { type ChildProcess, fork } from 'node:child_process';
-import type { Server } from 'node:http';
-import type { AddressInfo } from 'node:net';
 import { fileURLToPath } from 'node:url';
 import type { Run } from '@tallystone/contracts/runs/schema';
 import { Pool } from 'pg';
@@ -18,7 +16,6 @@ let otto: Visitor;
 let owner: Pool;
 const children: ChildProcess[] = [];
 let here: WorkerService | null = null;
-let listening: Server;
 
 // Workers are killed, frozen and given up on: seconds of waiting that a loaded machine stretches.
 vi.setConfig({ testTimeout: 90_000 });
@@ -27,7 +24,6 @@ beforeAll(async () => {
   server = await IntakeServer.start({ worker: false });
   owner = new Pool({ connectionString: server.database.ownerUrl });
   await owner.query(countingTables);
-  listening = server.app.listen(0, '127.0.0.1');
   marian = await server.signIn('marian', 'modeller');
   otto = await server.signIn('otto', 'auditor');
 });
@@ -38,7 +34,6 @@ afterEach(async () => {
 });
 afterAll(async () => {
   await owner.end();
-  await new Promise((resolve) => listening.close(resolve));
   await server.stop();
 });
 
@@ -245,7 +240,6 @@ async function stream(
   lastEventId: string,
   patience = 1200,
 ): Promise<{ id: number; data: { runId: string; state: string } }[]> {
-  const { port } = listening.address() as AddressInfo;
   const cookies = (visitor.agent as unknown as { jar: CookieJar }).jar.getCookies({
     path: '/',
     domain: '127.0.0.1',
@@ -256,7 +250,7 @@ async function stream(
   const timer = setTimeout(() => stop.abort(), patience);
   let text = '';
   try {
-    const response = await fetch(`http://127.0.0.1:${port}/api/events`, {
+    const response = await fetch(`${server.url}/api/events`, {
       headers: { 'Last-Event-ID': lastEventId, Cookie: cookies.toValueString() },
       signal: stop.signal,
     });

@@ -23,7 +23,7 @@ async function stranger(): Promise<{
   token: () => string;
   signIn: (email: string, password: string) => supertest.Test;
 }> {
-  const agent = supertest.agent(server.app);
+  const agent = supertest.agent(server.url);
   let token = tokenOf(await agent.get('/api/session').expect(200));
   return {
     agent,
@@ -65,7 +65,7 @@ describe('sign-in', () => {
     expect(id(first)).not.toBe(id(second));
     expect(id(first)).toMatch(/HttpOnly; SameSite=Lax$/);
     const old = id(first).split(';')[0];
-    expect((await supertest(server.app).get('/api/session').set('Cookie', old)).body.user).toBeNull();
+    expect((await supertest(server.url).get('/api/session').set('Cookie', old)).body.user).toBeNull();
   });
 
   it('answers a wrong password, an unknown address and a disabled account alike', async () => {
@@ -108,7 +108,7 @@ describe('sign-in', () => {
     let worst = 0;
     for (let k = 0; k < 10; k++) {
       const begun = performance.now();
-      await supertest(server.app).get('/health/live').expect(200);
+      await supertest(server.url).get('/health/live').expect(200);
       worst = Math.max(worst, performance.now() - begun);
     }
     await hashing;
@@ -151,7 +151,7 @@ describe('requests from elsewhere', () => {
     const refused = await marian.agent.delete('/api/session').set('X-XSRF-TOKEN', foreign).expect(403);
     expect(refused.body.code).toBe('cross-site');
     // Planted together with a cookie of the attacker's choice it is still not this session's.
-    const planted = supertest(server.app)
+    const planted = supertest(server.url)
       .delete('/api/session')
       .set('Cookie', `${await cookieOf(marian)}; XSRF-TOKEN=${foreign}`);
     await planted.set('X-XSRF-TOKEN', foreign).expect(403);
@@ -167,7 +167,7 @@ describe('requests from elsewhere', () => {
   });
 
   it('refuses a sign-in without a token', async () => {
-    await supertest(server.app)
+    await supertest(server.url)
       .post('/api/session')
       .send({ email: 'marian@saltmarsh.example', password: testPassword })
       .expect(403);
@@ -188,7 +188,7 @@ async function cookieOf(visitor: Visitor): Promise<string> {
 describe('sessions', () => {
   it('are listed for their person, and ended one by one', async () => {
     const here = await server.signIn('petra', 'modeller');
-    const there = new Visitor(supertest.agent(server.app), here.personId);
+    const there = new Visitor(supertest.agent(server.url), here.personId);
     await there.enter('petra@saltmarsh.example');
     const { sessions } = (await here.get('/api/sessions').expect(200)).body;
     expect(sessions).toHaveLength(2);
@@ -244,7 +244,7 @@ describe('a change of password', () => {
 
   it('ends every session of the person and starts this one anew', async () => {
     const here = await server.signIn('mover', 'modeller');
-    const there = new Visitor(supertest.agent(server.app), here.personId);
+    const there = new Visitor(supertest.agent(server.url), here.personId);
     await there.enter('mover@saltmarsh.example');
     const answer = await here
       .put('/api/session/password')
