@@ -12,10 +12,17 @@ import { fromTables, ownStandardisation, weightSums, type Standardisation } from
 export const PATH_TOLERANCE = 1e-6;
 
 /**
- * Share of the tolerance that folds are asked for. Of few rows, what a fold that is left out misses weighs more, and their sums are exact enough to ask for less.
+ * Share of the tolerance that folds are asked for. Of few rows, what a fold that is left out misses weighs more, and their sums are exact enough to ask for
+ * less; where each has a curvature of its own, the model's last step takes away what is left.
  */
 const FOLD_SHARE = 0.9;
 const FOLD_SHARE_OF_FEW = 0.3;
+
+/**
+ * Below so many rows for each column a fold is followed with a curvature of its own. To take it costs what ten passes do: of more rows, where a fold lies
+ * near to all rows, it would not be worth it.
+ */
+const OWN_CURVATURE_ROWS = 40;
 
 export interface EngineFolds {
   readonly tolerance?: number;
@@ -60,6 +67,9 @@ export interface FoldEvents {
   readonly onPass?: (share: number) => void;
 }
 
+const hasOwnCurvatures = ({ isWhole, byRow, rows, columns }: Layout): boolean =>
+  isWhole && byRow && rows < OWN_CURVATURE_ROWS * columns.length;
+
 /** Where no fit was asked for. */
 const none = { intercept: NaN, coefficients: new Float64Array(0) };
 
@@ -94,7 +104,7 @@ export class FoldsAlong {
   crossValidate(guide: readonly Point[], lambdas: readonly number[], options: EngineFolds = {}): EngineCrossValidation {
     const { layout } = this.ground;
     const count = layout.folds;
-    const share = layout.isWhole ? FOLD_SHARE_OF_FEW : FOLD_SHARE;
+    const share = layout.isWhole && !hasOwnCurvatures(layout) ? FOLD_SHARE_OF_FEW : FOLD_SHARE;
     const tolerance = share * Math.max(PATH_TOLERANCE, options.tolerance ?? PATH_TOLERANCE);
     const deviances = Array.from({ length: count }, () => new Float64Array(lambdas.length));
     const failed = new Uint8Array(count);
@@ -202,6 +212,7 @@ export class FoldsAlong {
       lambdas,
       tolerance,
       counted: layout.byRow,
+      ownCurvature: hasOwnCurvatures(layout),
       ...(layout.byRow && {
         lossLeftOut: (lane: number, at: Point) => leftOut[lane].meanLoss(at, followers[lane].standardisation),
       }),

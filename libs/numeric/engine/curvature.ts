@@ -73,6 +73,18 @@ export class LaneCurvature {
     eliminate(gram, size, hessian);
     return { size, gram, hessian };
   }
+
+  /**
+   * Of all rows but those of a fold, at a point of the lane's own.
+   * @param factor as for `take`
+   */
+  takeAt(passes: Passes, leftOut: number, point: PointLike, standardisation: Standardisation, factor: number): Curvature {
+    const { gram, hessian, size } = this;
+    passes.gramWithout(leftOut, point, standardisation, gram);
+    for (let k = 0; k < gram.length; k++) gram[k] *= factor;
+    eliminate(gram, size, hessian);
+    return { size, gram, hessian };
+  }
 }
 
 /**

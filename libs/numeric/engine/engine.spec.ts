@@ -183,6 +183,20 @@ describe('the engine cross-validates as the oracle does', () => {
       foldsOf(ROWS, 5),
     ));
   it('more folds than one batch has lanes', () => check(problemWith(lasso), foldsOf(ROWS, 21)));
+  /** Below 40 rows for each column a fold has a curvature of its own; above, and below 5,000 rows, that of all rows. */
+  for (const [rows, count] of [[900, 30], [2000, 20]] as const) {
+    it(`${rows} rows of ${count} columns`, () => {
+      for (const [mixing, folds] of [[1, 10], [0.5, 5], [0, 4]] as const)
+        check(randomProblem(12, rows, count, { mixing, standardize: true }), foldsOf(rows, folds));
+    });
+    it(`${rows} rows of ${count} columns with weights and a linear column`, () => {
+      const random = new Generator(5);
+      const problem = randomProblem(13, rows, count, lasso);
+      const linear = Float64Array.from(problem.outcome, (y) => 3 + 0.2 * y + random.normal());
+      const weights = Float64Array.from(problem.outcome, () => Math.round(4 * random.uniform()) / 2);
+      check({ ...problem, columns: [...problem.columns.slice(1), linear], weights }, foldsOf(rows, 6));
+    });
+  } // prettier-ignore
   it('a rare bin that a fold loses', () => {
     const problem = problemWith(lasso);
     const folds = foldsOf(ROWS, 5);

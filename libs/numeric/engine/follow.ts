@@ -22,6 +22,11 @@ export interface FollowOptions {
   readonly tolerance: number;
   /** Rows count as the passes' counts say. */
   readonly counted: boolean;
+  /**
+   * A lane's curvature is taken at its own point, not at the guide's: of few rows for its columns a fold lies so far from the guide that the guide's curvature
+   * leads to it in small steps alone. For layouts whose curvatures are of all rows.
+   */
+  readonly ownCurvature?: boolean;
   /** Mean loss over the fold that a lane leaves out at a point, where passes do not tell it. */
   readonly lossLeftOut?: (lane: number, at: Point) => number;
   /** After every pass; it may throw to stop. */
@@ -32,6 +37,8 @@ export interface FollowOptions {
 
 /** Places that one curvature serves: what it misses of a step is the guide's miss too, and taken off. */
 const REFRESH = 4;
+/** Places that a curvature serves which is taken at the lane's own point. */
+const REFRESH_OWN = 6;
 const MOST_PASSES = 40;
 const MOST_STALLED = 6;
 
@@ -60,7 +67,7 @@ interface State {
  * gradient is corrected by it beforehand; most steps then need the one pass that proves them.
  */
 export function follow(passes: Passes, followers: Follower[], options: FollowOptions): void {
-  const { guide, full, lambdas, tolerance } = options;
+  const { guide, full, lambdas, tolerance, ownCurvature } = options;
   const size = full.used.length;
   const states = followers.map((): State => ({
     model: new LaneModel(size),
@@ -82,11 +89,14 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
   // A step leads from place to place: its curvature is that of the middle.
   const along = new CurvaturesAlong(passes, full, (place) => between(guide, Math.min(place, guide.length - 1)));
   const curvatureFor = (lane: number): Curvature => {
-    const { leftOut, standardisation, place } = followers[lane];
+    const { leftOut, standardisation, place, point } = followers[lane];
     const state = states[lane];
-    if (state.curvature && place < state.curvatureAt + REFRESH) return state.curvature;
+    if (state.curvature && place < state.curvatureAt + (ownCurvature ? REFRESH_OWN : REFRESH)) return state.curvature;
     state.curvatureAt = place;
-    return (state.curvature = state.room.take(along.gramsAt(place), leftOut, wholeWeight / standardisation.totalWeight));
+    const factor = wholeWeight / standardisation.totalWeight;
+    return (state.curvature = ownCurvature
+      ? state.room.takeAt(passes, leftOut, point, standardisation, factor)
+      : state.room.take(along.gramsAt(place), leftOut, factor));
   };
 
   followers.forEach((follower) => copyPoint(guide[0], follower.point));
@@ -172,12 +182,39 @@ export function follow(passes: Passes, followers: Follower[], options: FollowOpt
     const { leftOut, point, heldOut, heldOutGradient, standardisation } = follower;
     if (leftOut < 0) return NaN;
     states[lane].model.solve(curvatureFor(lane), standardisation, lambdas[follower.place], point, finish, goal);
+    if (!states[lane].travelled && follower.passes > 1) goOn(states[lane].before, point, finish);
     if (options.lossLeftOut) return options.lossLeftOut(lane, finish);
     if (!heldOutGradient) return NaN;
     let change = heldOutGradient[0] * (finish.intercept - point.intercept);
     for (let j = 0; j < size; j++) change += heldOutGradient[j + 1] * (finish.t[j] - point.t[j]);
     return heldOut / passes.layout.foldWeights[leftOut] + change;
   }
+}
+
+/** Largest share of a step that the next one may repeat and be taken for the first of a geometric series. */
+const MOST_REPEATED = 0.5;
+
+/**
+ * What a curvature misses it misses again: the steps that it leads in shrink by about the same share, and those that are still to come sum to a geometric
+ * series (Aitken's extrapolation). Takes the sum instead of its first step.
+ * @param last where the last step led from `before`; `next` = where the next one leads, and gets where all of them would
+ */
+function goOn(before: Point, last: Point, next: Point): void {
+  const size = next.t.length;
+  const first = last.intercept - before.intercept;
+  let along = (next.intercept - last.intercept) * first;
+  let length = first * first;
+  for (let j = 0; j < size; j++) {
+    const step = last.t[j] - before.t[j];
+    along += (next.t[j] - last.t[j]) * step;
+    length += step * step;
+  }
+  if (!(length > 0)) return;
+  const repeated = Math.max(-MOST_REPEATED, Math.min(MOST_REPEATED, along / length));
+  const more = repeated / (1 - repeated);
+  next.intercept += more * (next.intercept - last.intercept);
+  // What the next step leads to zero is at zero.
+  for (let j = 0; j < size; j++) if (next.t[j] !== 0) next.t[j] += more * (next.t[j] - last.t[j]);
 }
 
 /** The middle of the guide's step to a place. */

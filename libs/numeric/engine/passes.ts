@@ -4,6 +4,12 @@ import { LANES_DOUBLE, LANES_SINGLE, rowsOfFoldIn, type Layout, type Sample } fr
 import type { Standardisation } from './standardisation';
 import { Alone, type Crew } from './crew';
 
+/** Where a curvature is taken. */
+interface PointLike {
+  readonly intercept: number;
+  readonly t: Float64Array;
+}
+
 export type Precision = 'single' | 'double';
 
 /** Runs passes: from the points of lanes to their exact gradients. */
@@ -13,6 +19,9 @@ export class Passes {
   private readonly i32: Int32Array;
   private readonly f32: Float32Array;
   private readonly f64: Float64Array;
+  private readonly u8: Uint8Array;
+  /** Total weight of all rows. */
+  private readonly weight: number;
   private readonly sums: Float64Array;
   private readonly heldSums: Float64Array;
   private readonly gradient: Float64Array;
@@ -28,6 +37,8 @@ export class Passes {
     this.i32 = new Int32Array(buffer);
     this.f32 = new Float32Array(buffer);
     this.f64 = new Float64Array(buffer);
+    this.u8 = new Uint8Array(buffer);
+    this.weight = layout.foldWeights.reduce((sum, w) => sum + w, 0);
     const rows = layout.bins + layout.linear + 2;
     this.sums = new Float64Array(rows * LANES_SINGLE);
     this.heldSums = new Float64Array(rows);
@@ -276,15 +287,40 @@ export class Passes {
    * @param apart false = one matrix of all folds
    * @returns folds x (columns + 1)^2, symmetric
    */
-  gram(
-    point: { intercept: number; t: Float64Array },
-    standardisation: Standardisation,
-    sample: Sample = 'large',
-    apart = true,
-  ): Float64Array[] {
-    const { layout, i32, f32, f64 } = this;
-    const { at, bins, columns, coded, linear, packs, folds, gramSize } = layout;
+  gram(point: PointLike, standardisation: Standardisation, sample: Sample = 'large', apart = true): Float64Array[] {
+    const { layout } = this;
     const { first, units } = layout.gramUnits[sample];
+    this.prepareGram(point, standardisation, first);
+    this.crew.run('gram', layout.at.descriptionGram, units.length);
+    const size = layout.columns.length + 1;
+    const grams = Array.from({ length: apart ? layout.folds : 1 }, () => new Float64Array(size * size));
+    units.forEach(({ fold }, u) => this.addUnit(grams[apart ? fold : 0], sample, u));
+    grams.forEach((gram) => mirror(gram, size));
+    return grams;
+  }
+
+  /**
+   * One weighted Gram matrix of all rows but those of a fold, by total weight of all rows. For layouts whose curvatures are of all rows.
+   * @param room gets (columns + 1)^2 values
+   */
+  gramWithout(fold: number, point: PointLike, standardisation: Standardisation, room: Float64Array): void {
+    const { layout, i32 } = this;
+    const { first, units } = layout.gramUnits.large;
+    this.prepareGram(point, standardisation, first);
+    const blocksOf = (u: number): number => (layout.at.gramUnits >> 2) + (first + u) * 3 + 1;
+    const blocks = units.map((_, u) => i32[blocksOf(u)]);
+    units.forEach((unit, u) => unit.fold === fold && (i32[blocksOf(u)] = 0));
+    this.crew.run('gram', layout.at.descriptionGram, units.length);
+    units.forEach((_, u) => (i32[blocksOf(u)] = blocks[u]));
+    room.fill(0);
+    units.forEach((unit, u) => unit.fold !== fold && this.addUnit(room, 'large', u));
+    mirror(room, layout.columns.length + 1);
+  }
+
+  /** Tells the kernel the linear predictor, the values by code and the units. */
+  private prepareGram(point: PointLike, standardisation: Standardisation, firstUnit: number): void {
+    const { layout, i32, f32, f64, u8 } = this;
+    const { at, bins, columns, coded, linear, packs } = layout;
     const d = at.descriptionGram >> 2;
     i32[d + word.OFFSETS] = at.offset32;
     f64.fill(0, at.contributions >> 3, (at.contributions >> 3) + bins * 4);
@@ -292,7 +328,6 @@ export class Passes {
     f32.fill(0, at.slopes >> 2, (at.slopes >> 2) + linear * 4);
     f32[at.intercepts >> 2] = point.intercept;
     let place = at.gramValues;
-    const u8 = new Uint8Array(layout.machine.buffer);
     for (let j = 0; j < columns.length; j++) {
       const { firstBin, bins: own, pack } = columns[j];
       if (firstBin < 0) {
@@ -308,20 +343,27 @@ export class Passes {
       place += packs[pack].codes * 4;
     }
     layout.machine.kernels.spread32(at.descriptionGram);
-    i32[d + word.GRAM_UNITS] = at.gramUnits + first * 12;
-    this.crew.run('gram', at.descriptionGram, units.length);
-    const size = columns.length + 1;
-    const total = layout.foldWeights.reduce((sum, w) => sum + w, 0);
-    const grams = Array.from({ length: apart ? folds : 1 }, () => new Float64Array(size * size));
-    units.forEach(({ fold, share }, u) => {
-      const from = (at.gramResults >> 3) + u * gramSize * gramSize;
-      const to = grams[apart ? fold : 0];
-      const part = share / total;
-      for (let a = 0; a < size; a++) for (let b = a; b < size; b++) to[a * size + b] += f64[from + a * gramSize + b] * part;
-    });
-    for (const gram of grams) for (let a = 1; a < size; a++) for (let b = 0; b < a; b++) gram[a * size + b] = gram[b * size + a];
-    return grams;
+    i32[d + word.GRAM_UNITS] = at.gramUnits + firstUnit * 12;
   }
+
+  /** Adds the upper half of what a unit of the Gram matrix came to. */
+  private addUnit(to: Float64Array, sample: Sample, u: number): void {
+    const { layout, f64, weight } = this;
+    const { gramSize } = layout;
+    const size = layout.columns.length + 1;
+    const part = layout.gramUnits[sample].units[u].share / weight;
+    const from = (layout.at.gramResults >> 3) + u * gramSize * gramSize;
+    for (let a = 0; a < size; a++) {
+      const source = from + a * gramSize;
+      const row = a * size;
+      for (let b = a; b < size; b++) to[row + b] += f64[source + b] * part;
+    }
+  }
+}
+
+/** Fills the lower half of a symmetric matrix. */
+function mirror(gram: Float64Array, size: number): void {
+  for (let a = 1; a < size; a++) for (let b = 0; b < a; b++) gram[a * size + b] = gram[b * size + a];
 }
 
 export const lanesOf = (precision: Precision): number => (precision === 'double' ? LANES_DOUBLE : LANES_SINGLE);
