@@ -1,6 +1,6 @@
 /**
- * Times what a person sees while a cut is dragged: from the movement of the pointer to the end of the frame that shows the counts, the weights of evidence
- * and the figures anew. On an installation of its own with the demo, in Chromium without a screen.
+ * Times the work on each movement while a cut is dragged: from when the page is told of it to the end of the frame that shows the counts, the weights of
+ * evidence and the figures anew. On an installation of its own with the demo, in Chromium without a screen.
  *
  *   npm run bench:drag             in words
  *   npm run bench:drag -- --json   one JSON object on standard output
@@ -23,7 +23,7 @@ interface Waited {
   readonly moves: number;
   /** Movements after which a number of the table had changed. */
   readonly changed: number;
-  /** Milliseconds from the event of a movement to the end of the main thread's work on the frame that follows. */
+  /** Milliseconds that the main thread works on a movement and the frame that shows it. */
   readonly p50: number;
   readonly p95: number;
   readonly most: number;
@@ -34,8 +34,9 @@ interface Waited {
 /** Runs in the page: after each movement of the pointer the time until the frame after it is laid out and painted, as far as the main thread does that. */
 const watch = `
   window.waited = [];
-  addEventListener('pointermove', (event) => {
-    const began = event.timeStamp;
+  addEventListener('pointermove', () => {
+    // Handed over just before a frame: what was waited for until then is the screen's, not the page's.
+    const began = performance.now();
     requestAnimationFrame(() => {
       const { port1, port2 } = new MessageChannel();
       port1.onmessage = () => {
