@@ -1,10 +1,6 @@
+import type { Coordinates } from './lane';
 import type { Passes } from './passes';
 import type { Standardisation } from './standardisation';
-
-interface PointLike {
-  readonly intercept: number;
-  readonly t: Float64Array;
-}
 
 /** Places that one large sample serves on either side, and places that are kept behind. */
 const ANCHORED = 8;
@@ -78,7 +74,7 @@ export class LaneCurvature {
    * Of all rows but those of a fold, at a point of the lane's own.
    * @param factor as for `take`
    */
-  takeAt(passes: Passes, leftOut: number, point: PointLike, standardisation: Standardisation, factor: number): Curvature {
+  takeAt(passes: Passes, leftOut: number, point: Coordinates, standardisation: Standardisation, factor: number): Curvature {
     const { gram, hessian, size } = this;
     passes.gramWithout(leftOut, point, standardisation, gram);
     for (let k = 0; k < gram.length; k++) gram[k] *= factor;
@@ -98,7 +94,7 @@ export class CurvaturesAlong {
   constructor(
     private readonly passes: Passes,
     private readonly standardisation: Standardisation,
-    private readonly pointAt: (place: number) => PointLike,
+    private readonly pointAt: (place: number) => Coordinates,
   ) {}
 
   /** Gram matrices by fold at a place. */

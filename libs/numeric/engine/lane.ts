@@ -1,6 +1,9 @@
 import { violation } from '../penalised/penalty';
 import type { Standardisation } from './standardisation';
 
+/** Where a curvature is taken. */
+export type Coordinates = Pick<Point, 'intercept' | 't'>;
+
 /** A model at one point: coordinates, and what a pass found there. */
 export interface Point {
   intercept: number;

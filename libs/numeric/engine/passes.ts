@@ -1,14 +1,8 @@
 import * as word from './kernels/descriptor';
-import type { Lane } from './lane';
+import type { Coordinates, Lane } from './lane';
 import { LANES_DOUBLE, LANES_SINGLE, rowsOfFoldIn, type Layout, type Sample } from './layout';
 import type { Standardisation } from './standardisation';
 import { Alone, type Crew } from './crew';
-
-/** Where a curvature is taken. */
-interface PointLike {
-  readonly intercept: number;
-  readonly t: Float64Array;
-}
 
 export type Precision = 'single' | 'double';
 
@@ -287,7 +281,7 @@ export class Passes {
    * @param apart false = one matrix of all folds
    * @returns folds x (columns + 1)^2, symmetric
    */
-  gram(point: PointLike, standardisation: Standardisation, sample: Sample = 'large', apart = true): Float64Array[] {
+  gram(point: Coordinates, standardisation: Standardisation, sample: Sample = 'large', apart = true): Float64Array[] {
     const { layout } = this;
     const { first, units } = layout.gramUnits[sample];
     this.prepareGram(point, standardisation, first);
@@ -303,7 +297,7 @@ export class Passes {
    * One weighted Gram matrix of all rows but those of a fold, by total weight of all rows. For layouts whose curvatures are of all rows.
    * @param room gets (columns + 1)^2 values
    */
-  gramWithout(fold: number, point: PointLike, standardisation: Standardisation, room: Float64Array): void {
+  gramWithout(fold: number, point: Coordinates, standardisation: Standardisation, room: Float64Array): void {
     const { layout, i32 } = this;
     const { first, units } = layout.gramUnits.large;
     this.prepareGram(point, standardisation, first);
@@ -318,7 +312,7 @@ export class Passes {
   }
 
   /** Tells the kernel the linear predictor, the values by code and the units. */
-  private prepareGram(point: PointLike, standardisation: Standardisation, firstUnit: number): void {
+  private prepareGram(point: Coordinates, standardisation: Standardisation, firstUnit: number): void {
     const { layout, i32, f32, f64, u8 } = this;
     const { at, bins, columns, coded, linear, packs } = layout;
     const d = at.descriptionGram >> 2;
