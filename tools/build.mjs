@@ -100,7 +100,7 @@ async function buildServer() {
   fs.rmSync(at('dist/server'), { recursive: true, force: true });
   try {
     await bundle(['server/src/main.ts', ...cli], { packages: 'external' });
-    // A thread is started for work, and again after work that was cancelled: with its packages in a few files it starts in a third of the time that
+    // A thread is started for work, and again after work that was cancelled: with its packages in a few files it starts in half of the time that
     // looking for hundreds of them takes. Packages in CommonJS ask for parts of Node.js by `require`, which a module does not have.
     await bundle(threads, {
       chunkNames: 'threads/[name]-[hash]',
