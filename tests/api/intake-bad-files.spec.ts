@@ -261,4 +261,30 @@ describe('numbers and dates', () => {
     const flag = body.columns[0].flags.find(({ code }: { code: string }) => code === 'repeated-identifiers');
     expect(flag.finding).toContain('3 rows repeat an identifier');
   });
+
+  // A quoted line break makes the careful reader read the second.
+  it.each([
+    ['fast', 'x'],
+    ['carefully', '"two\nlines"'],
+  ])('warns of near-duplicate identifiers, with the count, when it reads %s', async (_, note) => {
+    const alike: Record<number, string> = { 7: 'ab 1001', 8: 'AB001002', 9: 'AB-1003' };
+    const { path } = await modeller.sample(
+      modelId,
+      file('application_id,note,income,bad', 200, (row) =>
+        [alike[row] ?? `AB-${1000 + row}`, row === 50 ? note : 'x', row * 3, row % 3 === 0 ? 1 : 0].join(','),
+      ),
+    );
+    const { body } = await modeller.get(`${path}/columns`).expect(200);
+    expect(body.columns[0]).toMatchObject({ hashed: true, distinct: 199 });
+    const flag = body.columns[0].flags.find(({ code }: { code: string }) => code === 'near-duplicate-identifiers');
+    expect(flag.finding).toContain('2 identifiers differ from others only in how they are written');
+  });
+
+  it('says where categories differ only in how they are written', async () => {
+    const towns = ['London', 'london ', 'Hull', 'Self-employed', 'self employed', 'A+', 'A-'];
+    const [town] = await columnsOf(file('town,bad', 210, (row) => `${towns[row % towns.length]},${row % 3 === 0 ? 1 : 0}`));
+    const finding = town.flags.find(({ code }) => code === 'like-categories')?.finding;
+    expect(finding).toContain('“London” (30) and “london” (30); “Self-employed” (30) and “self employed” (30).');
+    expect(finding).not.toContain('A+');
+  });
 });

@@ -4,7 +4,7 @@ import type { Run } from '@tallystone/contracts/runs/schema';
 import { IntakeServer, type Visitor } from '../support/intake';
 import { type ServerProcess, killProcess, patchUpload, peakMemoryMiB, startServerProcess } from '../support/server-process';
 
-/** A file of just under 1 GiB goes through a real web process and a real worker; neither holds it in memory. */
+/** A file of just under 1 GiB goes through a real web process, which is killed on the way, and a real worker; neither holds it in memory. */
 
 const GIBIBYTE = 1024 ** 3;
 const PIECE = 8 * 1024 * 1024;
@@ -57,6 +57,23 @@ function* pieces(size: number): Generator<Buffer> {
   if (lines.length > 0) yield Buffer.from(`${lines.join('\n')}\n`);
 }
 
+/** Kills the server when half of a piece has been sent, sees that no half sample is listed, starts it anew, and asks where to go on. */
+async function killedWhileSending(location: string, offset: number, piece: Buffer): Promise<number> {
+  let reached!: () => void;
+  const written = new Promise<void>((resolve) => (reached = resolve));
+  const broken = patchUpload(new URL(location, web.url).href, offset, piece, modeller.credentials(), {
+    bytes: Math.floor(piece.length / 2),
+    reached,
+  });
+  await written;
+  await killProcess(web.process);
+  expect(await broken).toBeNull();
+  const between = await modeller.get(`/api/models/${modelId}/samples`).expect(200);
+  expect(between.body.samples).toEqual([]);
+  web = await startServerProcess(support, 'web');
+  return Number((await modeller.askUpload(location).expect(200)).headers['upload-offset']);
+}
+
 describe('a file of 1 GiB', () => {
   it(
     'is taken in, read and stored in bounded memory',
@@ -71,12 +88,28 @@ describe('a file of 1 GiB', () => {
       const sha256 = hash.digest('hex');
 
       const { headers } = await modeller.beginUpload(modelId, size).expect(201);
-      const url = new URL(headers.location, web.url).href;
       let offset = 0;
+      let killed: number | null = null;
       for (const piece of pieces(GIBIBYTE)) {
-        expect(await patchUpload(url, offset, piece, modeller.credentials())).toBe(204);
+        // Half-way the server is killed in the middle of a piece: at most one chunk is sent again.
+        let rest = piece;
+        if (killed === null && offset > GIBIBYTE / 2) {
+          killed = await killedWhileSending(headers.location, offset, piece);
+          expect(killed).toBeGreaterThanOrEqual(offset + piece.length / 2 - PIECE);
+          expect(killed).toBeLessThanOrEqual(offset + piece.length);
+          rest = piece.subarray(killed - offset);
+        }
+        expect(
+          await patchUpload(
+            new URL(headers.location, web.url).href,
+            offset + piece.length - rest.length,
+            rest,
+            modeller.credentials(),
+          ),
+        ).toBe(204);
         offset += piece.length;
       }
+      expect(killed).not.toBeNull();
       const list = await modeller.get(`/api/models/${modelId}/samples`).expect(200);
       const [sample] = list.body.samples as { id: string; sha256: string }[];
       expect(sample.sha256).toBe(sha256);

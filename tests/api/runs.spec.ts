@@ -5,6 +5,7 @@ import { Pool } from 'pg';
 import type supertest from 'supertest';
 import { afterAll, afterEach, beforeAll, describe, expect, it, vi } from 'vitest';
 import { inTransaction } from '../../server/src/database/transaction';
+import { Progress } from '../../server/src/jobs/progress';
 import { startRun } from '../../server/src/jobs/start-run';
 import { startWorker, type WorkerService } from '../../server/src/jobs/worker';
 import { counting, countingJob, countingTables } from '../support/counting-job';
@@ -270,6 +271,22 @@ async function stream(
 interface CookieJar {
   getCookies(access: { path: string; domain: string; secure: boolean; script: boolean }): { toValueString(): string };
 }
+
+describe('what is said of progress', () => {
+  it.each(['while it is written', 'in the pause after it'])('does not keep a run from ending %s', async (when) => {
+    const id = await begin({ steps: 1, pause: 0 });
+    vi.useFakeTimers({ toFake: ['setTimeout', 'clearTimeout'] });
+    try {
+      const progress = new Progress(server.context, { id, attempt: 1 });
+      progress.say('counting', 0.5);
+      if (when === 'in the pause after it') while (vi.getTimerCount() === 0) await new Promise((resolve) => setImmediate(resolve));
+      // The clock stands: a pause would never end.
+      await progress.settle();
+    } finally {
+      vi.useRealTimers();
+    }
+  });
+});
 
 describe('idempotency', () => {
   it('makes one run of fifty sends at once, and gives each the same answer', async () => {

@@ -81,6 +81,18 @@ async function profileOf(path: string, column: string): Promise<ColumnProfile> {
 }
 
 describe('a column that a person says is an identifier', () => {
+  it('is searched for near-duplicates when it is hashed', async () => {
+    const written = (row: number): string => (row === 31 ? 'marsh 4105' : row === 33 ? 'MARSH0004112' : member(row));
+    const lines = Array.from({ length: rowCount }, (_, row) => `${written(row)},${(row * 37) % 5000},${row % 9 === 0 ? 1 : 0}`);
+    const { path } = await modeller.sample(modelId, `member,income,bad\n${lines.join('\n')}\n`);
+    const started = await confirm(path, (content) => columnsAs(content, { member: 'identifier' }));
+    expect(await modeller.ended(started.body.id as string)).toMatchObject({ state: 'succeeded' });
+    const { hashed, flags } = await profileOf(path, 'member');
+    expect(hashed).toBe(true);
+    const finding = flags.find(({ code }) => code === 'near-duplicate-identifiers')?.finding;
+    expect(finding).toContain('2 identifiers differ from others only in how they are written');
+  });
+
   it('is kept as keyed hashes from the confirmation on, and shown nowhere', async () => {
     const { path, id } = await modeller.sample(modelId, applicants());
     const before = await profileOf(path, 'member');

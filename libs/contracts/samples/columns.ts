@@ -33,6 +33,8 @@ export const columnFlags = [
   'looks-like-protected',
   'holds-personal-data',
   'repeated-identifiers',
+  'near-duplicate-identifiers',
+  'like-categories',
   'unreadable-numbers',
   'numbers-as-text',
   'mixed-numbers',

@@ -10,20 +10,25 @@ const leastPause = 250;
 export class Progress {
   private latest: { phase: string; share: number | null } | null = null;
   private writing: Promise<void> | null = null;
+  private settled = false;
+  private endPause: () => void = () => undefined;
 
   constructor(
     private readonly context: Context,
-    private readonly run: Held,
+    private readonly run: Pick<Held, 'id' | 'attempt'>,
   ) {}
 
   say(phase: string, share: number | null): void {
+    if (this.settled) return;
     this.latest = { phase, share: share === null ? null : Math.min(1, Math.max(0, share)) };
     this.writing ??= this.drain().finally(() => (this.writing = null));
   }
 
-  /** Waits for the write under way and forgets what has not been written. */
+  /** Waits for the write under way, not for the pause behind it, and forgets what has not been written. */
   async settle(): Promise<void> {
+    this.settled = true;
     this.latest = null;
+    this.endPause();
     await this.writing;
   }
 
@@ -34,7 +39,11 @@ export class Progress {
       await this.write(phase, share).catch((error: unknown) =>
         this.context.log.debug({ err: error }, 'progress was not written'),
       );
-      await new Promise((resolve) => setTimeout(resolve, leastPause));
+      if (this.settled) return;
+      await new Promise<void>((resolve) => {
+        const pause = setTimeout(resolve, leastPause);
+        this.endPause = () => (clearTimeout(pause), resolve());
+      });
     }
   }
 

@@ -18,6 +18,7 @@ export function profileHashes(
   segments: readonly UnpackedSegment[],
   choices: ReadingChoices,
   personal: Personal,
+  writings: number | null = null,
 ): ColumnProfile | null {
   const size = segments.reduce((sum, { texts }) => sum + texts.length, 0);
   if (size <= fewTexts) return null;
@@ -67,6 +68,7 @@ export function profileHashes(
     name,
     position,
     personal,
+    writings,
     personalValues: [],
     rows,
     missingTokens: [...missing].map(([value, count]) => ({ value, count })),

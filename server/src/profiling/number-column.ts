@@ -57,6 +57,7 @@ export function profileNumbers(
     name,
     position,
     personal: null,
+    writings: null,
     personalValues: values.found(),
     rows: joined.rows,
     missingTokens,

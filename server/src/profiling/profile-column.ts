@@ -4,6 +4,7 @@ import { numberReader } from '../reading/index';
 import type { TextColumn } from '../replay/source';
 import { type CountedNumbers, countNumbers, withoutPlaces } from './counted-numbers';
 import { type Counted, isIsoDate, judgeKind, thin } from './kind';
+import { likeCategories } from './like-categories';
 import type { Personal } from './personal';
 import { PersonalValues, type PersonalValuesFound } from './personal-values';
 import { suspectSpecials } from './specials';
@@ -18,6 +19,7 @@ const histogramBins = 30;
  * Everything the quality table says of one column. Leakage needs the outcome and is judged afterwards (leakage.ts).
  *
  * @param personal what identifies people; the texts are then keyed hashes and are counted, not shown
+ * @param writings how many different ones there are of them when it does not count how they are written; null where that was not counted
  */
 export function profileColumn(
   name: string,
@@ -25,6 +27,7 @@ export function profileColumn(
   column: TextColumn,
   choices: ReadingChoices,
   personal: Personal | null,
+  writings: number | null = null,
 ): ColumnProfile {
   const counts = new Uint32Array(column.texts.length);
   for (const code of column.codes) counts[code]++;
@@ -41,15 +44,17 @@ export function profileColumn(
   const values = new PersonalValues();
   if (!personal) for (const { text, count } of all) values.add(text, count);
   const judged = personal ? { kind: 'categorical' as const, flags: [] } : judgeKind(all, reader);
+  const alike = personal || judged.kind !== 'categorical' ? null : likeCategories(all);
   return describeColumn({
     name,
     position,
     personal,
+    writings,
     personalValues: values.found(),
     rows: column.codes.length,
     missingTokens,
     kind: judged.kind,
-    kindFlags: judged.flags,
+    kindFlags: alike ? [...judged.flags, alike] : judged.flags,
     distinct: all.length,
     mostFrequent: mostFrequentOf(all, mostListed),
     numbers: judged.kind === 'numeric' ? countNumbers(all, reader.read) : null,
@@ -63,6 +68,8 @@ export interface ColumnFacts {
   readonly name: string;
   readonly position: number;
   readonly personal: Personal | null;
+  /** Of identifiers: how many there are when it does not count how they are written. */
+  readonly writings: number | null;
   /** Of a column that is not hashed: what its values seem to hold. */
   readonly personalValues: readonly PersonalValuesFound[];
   readonly rows: number;
@@ -100,7 +107,7 @@ export function describeColumn(facts: ColumnFacts): ColumnProfile {
       finding: `May be special codes rather than amounts: ${listed}.`,
     });
   }
-  if (personal) flags.push(...personalFlags(personal, rows - missing, distinct));
+  if (personal) flags.push(...personalFlags(personal, rows - missing, distinct, facts.writings));
   if (personalValues.length > 0) flags.push(personalValuesFlag(personalValues));
   const suggestion = suggestRole({ name, kind, rows, missing, distinct, personal, flags });
   if (suggestion.protectedFinding)
@@ -179,7 +186,7 @@ function shape(
   return flags;
 }
 
-function personalFlags(personal: Personal, known: number, distinct: number): ColumnFlag[] {
+function personalFlags(personal: Personal, known: number, distinct: number, writings: number | null): ColumnFlag[] {
   const code =
     personal.kind === 'email' ? 'looks-like-email' : personal.kind === 'name' ? 'looks-like-name' : 'looks-like-identifier';
   const flags: ColumnFlag[] = [
@@ -188,6 +195,12 @@ function personalFlags(personal: Personal, known: number, distinct: number): Col
   if (personal.kind === 'identifier' && distinct < known) {
     const finding = `${thin(known - distinct)} rows repeat an identifier that stood before: one applicant may be in the file several times.`;
     flags.push({ code: 'repeated-identifiers', weight: 'look', finding });
+  }
+  const near = writings === null ? 0 : distinct - writings;
+  if (near > 0) {
+    const differ = near === 1 ? 'identifier differs from another' : 'identifiers differ from others';
+    const finding = `${thin(near)} ${differ} only in how ${near === 1 ? 'it is' : 'they are'} written (case, blanks, punctuation, leading zeros): one applicant may be in the file several times.`;
+    flags.push({ code: 'near-duplicate-identifiers', weight: 'look', finding });
   }
   return flags;
 }
@@ -203,6 +216,7 @@ function personalValuesFlag(found: readonly PersonalValuesFound[]): ColumnFlag {
 const plainAmount = /^-?[\d.,]+$/;
 
 const unexampled: Partial<Record<ColumnFlag['code'], string>> = {
+  'like-categories': 'Some of its values differ only in case or in blanks and signs between words.',
   'doubtful-dates': 'Some of its values are no dates, or doubtful ones.',
   'mixed-numbers': 'Numbers are written in more than one way: write them in one way in the file and bring it in again, or do not use the column.',
   'numbers-as-text': 'Some of its values are numbers, or written like numbers, and others are not.',

@@ -3,10 +3,12 @@ import { KeyedHash } from '../profiling/sha256/keyed-hash';
 import type { Personal } from '../profiling/personal';
 import { hashColumn } from '../profiling/hash-column';
 import { personalInSegment } from '../profiling/personal-in-segment';
+import { type SegmentWritings, watchedColumns, writingsOf, writingsOfTexts } from '../profiling/writings';
 import { NotPlain } from '../reading/plain/field-index';
 import type { NumberStyle } from '../reading/plain/number-style';
 import { SegmentCoder } from '../reading/plain/segment-coder';
-import { encodePacked } from '../storage/packedSegment';
+import { encodePacked, textsOfCoded } from '../storage/packedSegment';
+import type { CodedColumn } from '../reading/plain/column-coder';
 import type { Task, TaskControl } from './task';
 
 export interface CodePayload {
@@ -35,6 +37,8 @@ export type CodeAnswer =
       readonly keys: Float64Array;
       readonly styles: readonly (NumberStyle | null)[];
       readonly personal: readonly (Personal | null)[];
+      /** How identifiers are written, by the positions of their columns. */
+      readonly writings: ReadonlyMap<number, SegmentWritings>;
     }
   | { readonly notPlain: string };
 
@@ -83,6 +87,14 @@ export const codeSegment: Task<CodePayload, CodeAnswer> = (payload, control) => 
   });
   const keys = coder.keys.slice(0, coder.rows);
   control.transfer(keys.buffer);
+  const writings = new Map(
+    watchedColumns(personal).map((position) => {
+      const found = writingsOfColumn(coder.columns[position], missing);
+      control.transfer(found.joined.buffer);
+      control.transfer(found.parted.buffer);
+      return [position, found];
+    }),
+  );
   return {
     notPlain: null,
     rows: coder.rows,
@@ -90,8 +102,17 @@ export const codeSegment: Task<CodePayload, CodeAnswer> = (payload, control) => 
     keys,
     styles: coder.columns.map(({ style }) => style),
     personal,
+    writings,
   };
 };
+
+function writingsOfColumn(column: CodedColumn, missing: ReadonlySet<string>): SegmentWritings {
+  // Only the first segment, on which a column is judged, can have kept some as numbers.
+  if (column.style !== null) return writingsOfTexts(textsOfCoded(column).texts, (text) => missing.has(text));
+  const { texts } = column;
+  const longest = Math.max(...[...missing].map((text) => Buffer.byteLength(text)));
+  return writingsOf(texts, (code) => texts.places[code + 1] - texts.places[code] <= longest && missing.has(texts.text(code)));
+}
 
 /** Handed over as one buffer: what deflate gives are views on larger ones. */
 function together(contents: readonly Uint8Array[], control: TaskControl): Uint8Array[] {

@@ -92,7 +92,7 @@ describe('the profile of a stored column', () => {
           quick++;
           expect(found).toEqual(expected);
         }
-        expect(profileStored({ name, position: 0, contents, choices, personal: null, outcome }, control)).toEqual(expected);
+        expect(profileStored({ name, position: 0, contents, choices, personal: null, writings: null, outcome }, control)).toEqual(expected);
       }),
       // Two missing tokens of one count, of which one is a number.
       { numRuns: 1000, examples: [[['', '0', '0', '0', '0', '-999'], 3, false, 'c']] },
@@ -111,7 +111,7 @@ describe('the profile of a stored column', () => {
     const found = profileNumbers('c', 0, contents.map((content) => unpack(inflateSegment(content))), chosen, null);
     expect(found).toEqual(byTexts('c', contents, null, chosen));
     // Under another decimal sign these are texts.
-    expect(profileStored({ name: 'c', position: 0, contents, choices, personal: null, outcome: null }, control)).toMatchObject({ kind: 'categorical' });
+    expect(profileStored({ name: 'c', position: 0, contents, choices, personal: null, writings: null, outcome: null }, control)).toMatchObject({ kind: 'categorical' });
   }); // prettier-ignore
 
   it('counts hashes without a dictionary of them', () => {
@@ -124,7 +124,7 @@ describe('the profile of a stored column', () => {
       const places = new Map(texts.map((text, place) => [text, place]));
       segments.push(encodePacked(packTexts({ texts, codes: values.slice(from, from + 65_536).map((text) => places.get(text) ?? 0) })));
     } // prettier-ignore
-    const found = profileStored({ name: 'id', position: 0, contents: segments, choices, personal, outcome: null }, control);
+    const found = profileStored({ name: 'id', position: 0, contents: segments, choices, personal, writings: null, outcome: null }, control);
     expect(found).toEqual(profileColumn('id', 0, joinSegments(segments.map(decodeSegment)), choices, personal));
     expect(found).toMatchObject({ distinct: 117_600, missing: 2600 });
   });
@@ -132,7 +132,7 @@ describe('the profile of a stored column', () => {
   it('reads segments of the older form', () => {
     const texts = ['1', '2', '', '3.50'];
     const contents = [encodeSegment({ texts, codes: Uint8Array.from([0, 1, 2, 3, 3]) })];
-    const found = profileStored({ name: 'c', position: 0, contents, choices, personal: null, outcome: null }, control);
+    const found = profileStored({ name: 'c', position: 0, contents, choices, personal: null, writings: null, outcome: null }, control);
     expect(found).toMatchObject({ kind: 'numeric', rows: 5, distinct: 3, missing: 1 });
   });
 });

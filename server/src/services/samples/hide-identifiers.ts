@@ -73,14 +73,14 @@ export async function hideIdentifiers(
   for (const before of profiles.filter(({ column }) => names.has(column))) {
     const { column: name, position } = before;
     const clear = await readContents(context.sequelize, readingId, position);
-    const contents = await runInThread(
+    const { contents, writings } = await runInThread(
       'sample.hide',
       { contents: clear, missing: reading.missing, key },
       { signal, transfer: clear.map(({ buffer }) => buffer) },
     );
     const profile = await runInThread(
       'sample.profile',
-      { name, position, contents: contents.map(({ content }) => content), choices: reading, personal: said, outcome: null },
+      { name, position, contents: contents.map(({ content }) => content), choices: reading, personal: said, writings, outcome: null },
       { signal },
     );
     // How long its texts are is no value of any of them.

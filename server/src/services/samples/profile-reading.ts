@@ -14,7 +14,7 @@ import type { ReadRows, Reading } from './read-rows';
 export async function profileReading(
   { run, choices }: Reading,
   readingId: string,
-  { facts, personal }: ReadRows,
+  { facts, personal, writings }: ReadRows,
   progress: (share: number) => void,
 ): Promise<ColumnProfile[]> {
   const { sequelize } = run.context;
@@ -27,7 +27,7 @@ export async function profileReading(
       position,
       await runInThread(
         'sample.profile',
-        { name: header[position], position, contents, choices, personal: personal[position] ?? null, outcome },
+        { name: header[position], position, contents, choices, personal: personal[position] ?? null, writings: writings.get(position) ?? null, outcome },
         { signal: run.signal, transfer: contents.map(({ buffer }) => buffer) },
       ),
     );

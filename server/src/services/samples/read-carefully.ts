@@ -2,6 +2,7 @@ import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
 import { fileLimits } from '@tallystone/contracts/samples/schema';
 import { DuplicateRows } from '../../profiling/duplicates';
 import { type Personal, hashText, personalColumn } from '../../profiling/personal';
+import { WritingsByColumn, watchedColumns, writingsOfTexts } from '../../profiling/writings';
 import { type ColumnSegment, readSegments } from '../../reading/index';
 import { segmentRows, storeSegment } from '../../storage/columnStore';
 import { readRawFile } from '../../storage/rawFiles';
@@ -24,6 +25,7 @@ export async function readCarefully(reading: Reading, readingId: string): Promis
   });
   const isMissing = missingIn(choices);
   const duplicates = new DuplicateRows();
+  const writings = new WritingsByColumn();
   let personal: (Personal | null)[] = [];
   let segment = 0;
   for await (const part of file.segments) {
@@ -31,6 +33,7 @@ export async function readCarefully(reading: Reading, readingId: string): Promis
     if (segment === 0)
       personal = part.columns.map((column, position) => judgePersonal(file.facts().header[position], column, isMissing));
     duplicates.add(part.columns, part.rows);
+    for (const position of watchedColumns(personal)) writings.add(position, writingsOfTexts(part.columns[position].texts, isMissing));
     const columns = part.columns.map((values, position) => ({
       position,
       values: personal[position]
@@ -41,7 +44,8 @@ export async function readCarefully(reading: Reading, readingId: string): Promis
     segment++;
   }
   const facts = file.facts();
-  return { facts, personal, duplicateRows: facts.problems.length > 0 ? 0 : duplicates.count() };
+  const refused = facts.problems.length > 0;
+  return { facts, personal, duplicateRows: refused ? 0 : duplicates.count(), writings: refused ? new Map() : writings.distinct() };
 }
 
 const missingIn = (choices: ReadingChoices): ((text: string) => boolean) => {

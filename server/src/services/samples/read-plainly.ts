@@ -2,6 +2,7 @@ import { randomInt } from 'node:crypto';
 import { fileLimits } from '@tallystone/contracts/samples/schema';
 import { DuplicateRows } from '../../profiling/duplicates';
 import type { Personal } from '../../profiling/personal';
+import { WritingsByColumn } from '../../profiling/writings';
 import { NotPlain } from '../../reading/plain/field-index';
 import type { NumberStyle } from '../../reading/plain/number-style';
 import { type RecordsOfSegment, splitRecords } from '../../reading/plain/split-records';
@@ -37,6 +38,7 @@ export async function readPlainly(reading: Reading, readingId: string): Promise<
   warmThreads();
   const seed = randomInt(1, 0x7fff_ffff);
   const duplicates = new DuplicateRows();
+  const writings = new WritingsByColumn();
   let personal: readonly (Personal | null)[] | null = null;
   let styles: readonly (NumberStyle | null)[] = [];
   let writing: Promise<void> = Promise.resolve();
@@ -80,6 +82,7 @@ export async function readPlainly(reading: Reading, readingId: string): Promise<
         personal ??= coded.personal;
         styles = coded.styles.map((style, position) => style ?? styles[position] ?? null);
         duplicates.addKeys(coded.keys);
+        coded.writings.forEach((found, position) => writings.add(position, found));
         return store(place, coded);
       });
       // What identifies people is judged on the first segment, before anything of the others is stored.
@@ -100,5 +103,5 @@ export async function readPlainly(reading: Reading, readingId: string): Promise<
     run.signal.throwIfAborted();
     throw thrown;
   }
-  return { facts: file.facts(), personal: personal ?? [], duplicateRows: duplicates.count() };
+  return { facts: file.facts(), personal: personal ?? [], duplicateRows: duplicates.count(), writings: writings.distinct() };
 }

@@ -21,4 +21,6 @@ export interface ReadRows {
   readonly personal: readonly (Personal | null)[];
   /** Records that equal an earlier one. */
   readonly duplicateRows: number;
+  /** By the position of a column of identifiers: how many there are when it does not count how they are written. */
+  readonly writings: ReadonlyMap<number, number>;
 }

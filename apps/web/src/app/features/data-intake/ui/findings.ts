@@ -91,6 +91,8 @@ const flagWords: Partial<Record<ColumnProfile['flags'][number]['code'], string>>
   'holds-personal-data': 'personal data',
   'possible-leakage': 'leakage?',
   'repeated-identifiers': 'repeated',
+  'near-duplicate-identifiers': 'near-duplicates',
+  'like-categories': 'written alike?',
   'unreadable-numbers': 'no numbers',
   'numbers-as-text': 'numbers as text',
   'mixed-numbers': 'mixed numbers',

@@ -26,6 +26,8 @@ const words: Partial<Record<QualityFlag['code'], string>> = {
   'looks-like-protected': 'Protected?',
   'holds-personal-data': 'Personal data in values',
   'repeated-identifiers': 'Repeated identifiers',
+  'near-duplicate-identifiers': 'Near-duplicate identifiers',
+  'like-categories': 'Categories written alike',
   'unreadable-numbers': 'Values that are no numbers',
   'numbers-as-text': 'Numbers as text',
   'mixed-numbers': 'Numbers written in more than one way',

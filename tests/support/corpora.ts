@@ -1,0 +1,177 @@
+import type { ProblemDetails, ProblemItem } from '@tallystone/contracts/problems/schema';
+import type { Run } from '@tallystone/contracts/runs/schema';
+import type { ColumnList } from '@tallystone/contracts/samples/columns';
+import type { Preview } from '@tallystone/contracts/samples/reading';
+import { stringify } from 'csv-stringify/sync';
+import { parse } from 'csv-parse/sync';
+import fc from 'fast-check';
+import { expect } from 'vitest';
+import { deriveKey } from '../../server/src/config/keys';
+import { hashText } from '../../server/src/profiling/personal';
+import { openSample } from '../../server/src/storage/columnStore';
+import type { IntakeServer, Visitor } from './intake';
+
+/** What a file came to on the way that every file takes: upload, preview, reading, the column store. */
+export type Outcome =
+  | { readonly refused: readonly ProblemItem[] }
+  | { readonly refused: null; readonly header: readonly string[]; readonly rows: readonly (readonly string[])[] };
+
+/** Longest that a small file may take: a hang is a failure, a busy machine is not. */
+const patience = 5000;
+/** A model of its own for so many files: the list of its samples is asked for each. */
+const filesOfModel = 50;
+
+/** Sends files through the whole product, and sees to it that each ends as data or in problems that say what and where, within the time. */
+export class CorpusReader {
+  private modelId = '';
+  private files = 0;
+  private readonly key: Buffer;
+
+  constructor(
+    private readonly server: IntakeServer,
+    private readonly visitor: Visitor,
+  ) {
+    this.key = deriveKey(server.context.config.keys.identifiers, 'sample columns');
+  }
+
+  async read(bytes: Buffer, choices: Record<string, unknown> = {}): Promise<Outcome> {
+    if (this.files++ % filesOfModel === 0) this.modelId = await this.visitor.model(`Corpus ${this.files}`);
+    const began = performance.now();
+    const outcome = await this.onItsWay(bytes, choices);
+    expect(performance.now() - began).toBeLessThan(patience);
+    return outcome;
+  }
+
+  private async onItsWay(bytes: Buffer, choices: Record<string, unknown>): Promise<Outcome> {
+    const { visitor } = this;
+    let answer = await visitor.beginUpload(this.modelId, bytes.length);
+    if (answer.status === 201 && bytes.length > 0) answer = await visitor.sendUpload(answer.headers.location, 0, bytes);
+    if (answer.status !== 204) return refusedAtOnce(answer, [400, 413, 415, 422]);
+    const list = await visitor.get(`/api/models/${this.modelId}/samples`).expect(200);
+    const [{ id }] = (list.body as { samples: { id: string }[] }).samples;
+    const path = `/api/models/${this.modelId}/samples/${id}`;
+    const preview = await visitor.post(`${path}/preview`).send(choices);
+    if (preview.status !== 200) return refusedAtOnce(preview, [422]);
+    const started = await visitor.post(`${path}/readings`).send((preview.body as Preview).choices);
+    if (started.status !== 202) return refusedAtOnce(started, [422]);
+    const run = await visitor.ended((started.body as Run).id);
+    if (run.state !== 'succeeded') {
+      expect(run.problem?.code).toBe('file-refused');
+      const { problems } = (await visitor.get(path).expect(200)).body as { problems: ProblemItem[] };
+      return { refused: withPlaces(problems) };
+    }
+    return this.stored(id, path);
+  }
+
+  /** Identifiers are kept as keyed hashes and come back as these. */
+  private async stored(id: string, path: string): Promise<Outcome> {
+    const { columns } = (await this.visitor.get(`${path}/columns`).expect(200)).body as ColumnList;
+    const header = columns.map(({ column }) => column);
+    const source = await openSample(this.server.context.sequelize, id, header);
+    const cells = header.map((name) => {
+      const column = source.column(name);
+      if (column?.kind !== 'texts') throw new Error('Texts are expected');
+      return Array.from(column.codes, (code) => column.texts[code]);
+    });
+    this.hashed = columns.map(({ hashed }) => hashed);
+    return { refused: null, header, rows: Array.from({ length: source.rows }, (_, row) => cells.map((column) => column[row])) };
+  }
+  private hashed: readonly boolean[] = [];
+
+  /** Rows as they must come back from the store: what identifies people as hashes. */
+  asStored(rows: readonly (readonly string[])[], missing: readonly string[] = ['']): string[][] {
+    return rows.map((row) =>
+      row.map((text, column) => (this.hashed[column] && !missing.includes(text) ? hashText(this.key, text) : text)),
+    );
+  }
+}
+
+function refusedAtOnce({ status, body }: { status: number; body: unknown }, allowed: readonly number[]): Outcome {
+  const details = body as ProblemDetails;
+  expect(allowed, JSON.stringify(body)).toContain(status);
+  expect(details.detail).not.toBe('');
+  const listed = details.problems.length > 0 ? details.problems : [{ code: details.code, message: details.detail, where: {} }];
+  return { refused: listed };
+}
+
+function withPlaces(problems: readonly ProblemItem[]): readonly ProblemItem[] {
+  expect(problems.length).toBeGreaterThan(0);
+  for (const { code, message, where } of problems) {
+    expect(code).not.toBe('');
+    expect(message).not.toBe('');
+    if (!['no-rows', 'empty'].includes(code)) expect(Object.keys(where), message).not.toEqual([]);
+  }
+  return problems;
+}
+
+const cell = fc.oneof(
+  fc.string({ unit: 'grapheme', maxLength: 12 }),
+  fc.constantFrom('', ' ', '"', '""', ',', '\n', '\r\n', '\r', '\t', ' a ', '1e309', '-', "'"),
+);
+const table = fc
+  .integer({ min: 1, max: 5 })
+  .chain((width) => fc.array(fc.array(cell, { minLength: width, maxLength: width }), { minLength: 1, maxLength: 12 }));
+const anything = fc
+  .array(fc.constantFrom('a', '1', ' ', ',', '"', '\n', '\r\n', '\r', 'é', '\0', '\t'), { maxLength: 60 })
+  .map((parts) => parts.join(''));
+/** Lines of two fields, most of them proper. */
+const field = fc.oneof(
+  { weight: 4, arbitrary: fc.constantFrom('a', '1', '', ' ', 'é', '"a,b"', '"a""b"', '"a\nb"', ' "a"', 'a"b') },
+  { weight: 1, arbitrary: fc.constantFrom('"', '\0', ',', '"a"b', '\r') },
+);
+const lines = fc
+  .array(fc.tuple(field, field), { minLength: 1, maxLength: 8 })
+  .map((rows) => `${rows.map((row) => row.join(',')).join('\n')}\n`);
+const wild = fc.oneof(anything, lines);
+const stated = { encoding: 'utf-8', delimiter: ',', trim: false, decimal: '.', thousands: null, missing: [] };
+
+/** Generated tables come back to the letter, whatever is in them. */
+export async function generatedTables(reader: CorpusReader, runs: number): Promise<void> {
+  await fc.assert(
+    fc.asyncProperty(table, fc.constantFrom(',', ';', '\t', '|'), fc.constantFrom('\n', '\r\n', '\r'), async (rows, delimiter, end) => {
+      const clean = rows.map((row) => row.map((text) => text.replaceAll('\0', '')));
+      const header = clean[0].map((_, index) => `c${index}`);
+      const bytes = Buffer.from(stringify([header, ...clean], { delimiter, record_delimiter: end, quoted: true }));
+      // Blank lines below a header are no rows.
+      fc.pre(bytes.toString().slice(bytes.indexOf(end)).trim() !== '');
+      const outcome = await reader.read(bytes, { ...stated, delimiter });
+      if (outcome.refused) throw new Error(`A proper table is refused: ${JSON.stringify(outcome.refused)}`);
+      expect(outcome).toMatchObject({ header, rows: reader.asStored(clean) });
+    }),
+    { numRuns: runs },
+  ); // prettier-ignore
+}
+
+/** Files of any characters end in problems, or as csv-parse reads them. Returns how many were read. */
+export async function generatedTexts(reader: CorpusReader, runs: number): Promise<number> {
+  let accepted = 0;
+  await fc.assert(
+    fc.asyncProperty(wild, fc.boolean(), async (text, trim) => {
+      const outcome = await reader.read(Buffer.from(`x,y\n${text}`), { ...stated, trim });
+      if (outcome.refused) return;
+      accepted++;
+      const oracle: string[][] = parse(`x,y\n${text}`, {
+        trim,
+        record_delimiter: ['\r\n', '\n', '\r'],
+        relax_column_count: true,
+        relax_quotes: true,
+        skip_empty_lines: false,
+      });
+      while (oracle.length > 0 && oracle[oracle.length - 1].length === 1 && oracle[oracle.length - 1][0] === '') oracle.pop();
+      expect(outcome.rows).toEqual(reader.asStored(oracle.slice(1)));
+    }),
+    { numRuns: runs },
+  );
+  return accepted;
+}
+
+/** Files of any bytes, under the choices that the preview proposes. */
+export async function generatedBytes(reader: CorpusReader, runs: number): Promise<void> {
+  await fc.assert(
+    fc.asyncProperty(fc.uint8Array({ maxLength: 200 }), async (bytes) => {
+      const outcome = await reader.read(Buffer.from(bytes));
+      if (outcome.refused === null) for (const row of outcome.rows) expect(row).toHaveLength(outcome.header.length);
+    }),
+    { numRuns: runs },
+  );
+}
