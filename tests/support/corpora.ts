@@ -18,24 +18,31 @@ export type Outcome =
 
 /** Longest that a small file may take: a hang is a failure, a busy machine is not. */
 const patience = 5000;
-/** A model of its own for so many files: the list of its samples is asked for each. */
+/** A person and a model of their own for so many files: what one session may ask in a minute is bounded, and the list of samples is asked for each. */
 const filesOfModel = 50;
 
 /** Sends files through the whole product, and sees to it that each ends as data or in problems that say what and where, within the time. */
 export class CorpusReader {
+  private visitor!: Visitor;
   private modelId = '';
   private files = 0;
   private readonly key: Buffer;
+  /** By column of the file that was read last. */
+  private hashed: readonly boolean[] = [];
 
+  /** @param url where the product serves */
   constructor(
     private readonly server: IntakeServer,
-    private readonly visitor: Visitor,
+    private readonly url: string,
   ) {
     this.key = deriveKey(server.context.config.keys.identifiers, 'sample columns');
   }
 
   async read(bytes: Buffer, choices: Record<string, unknown> = {}): Promise<Outcome> {
-    if (this.files++ % filesOfModel === 0) this.modelId = await this.visitor.model(`Corpus ${this.files}`);
+    if (this.files++ % filesOfModel === 0) {
+      this.visitor = await this.server.signInAt(this.url, `reader-${this.files}`, 'modeller');
+      this.modelId = await this.visitor.model();
+    }
     const began = performance.now();
     const outcome = await this.onItsWay(bytes, choices);
     expect(performance.now() - began).toBeLessThan(patience);
@@ -76,7 +83,6 @@ export class CorpusReader {
     this.hashed = columns.map(({ hashed }) => hashed);
     return { refused: null, header, rows: Array.from({ length: source.rows }, (_, row) => cells.map((column) => column[row])) };
   }
-  private hashed: readonly boolean[] = [];
 
   /** Rows as they must come back from the store: what identifies people as hashes. */
   asStored(rows: readonly (readonly string[])[], missing: readonly string[] = ['']): string[][] {

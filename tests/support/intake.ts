@@ -73,14 +73,19 @@ export class IntakeServer {
   }
 
   /** A new person with these roles, signed in. */
-  async signIn(name: string, ...roles: Role[]): Promise<Visitor> {
+  signIn(name: string, ...roles: Role[]): Promise<Visitor> {
+    return this.signInAt(this.url, name, ...roles);
+  }
+
+  /** The same at another process on this database. */
+  async signInAt(url: string, name: string, ...roles: Role[]): Promise<Visitor> {
     const email = `${name}@saltmarsh.example`;
     // Of the least cost: the product checks a password at the cost that its hash states, and hundreds of people sign in here.
     const passwordHash = await hash(preparePassword(this.context, password), 4);
     const person = await inTransaction(this.context.sequelize, (tx) =>
       createPerson(tx, { name, email, passwordHash, roles, by: 'set-up' }),
     );
-    const visitor = new Visitor(supertest.agent(this.url), person.id);
+    const visitor = new Visitor(supertest.agent(url), person.id);
     await visitor.enter(email);
     return visitor;
   }

@@ -10,6 +10,7 @@ import { CellTemplate, DenseTable } from '../../../ui/dense-table';
 import { plural } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
+import { SortInAddress } from '../../../ui/sort-in-address';
 import { StatusMark, type StatusTone } from '../../../ui/status-mark';
 import { type Invitation, People, type Person, invitationList, peopleList } from '../data/people';
 import { InviteDialog, type InviteQuestion } from '../ui/invite-dialog';
@@ -47,7 +48,7 @@ const invitationTones: Readonly<Record<Invitation['state'], StatusTone>> = {
 @Component({
   selector: 'ts-people-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
-  imports: [MatButtonModule, CellTemplate, DenseTable, PageHeader, ProblemList, StatusMark],
+  imports: [SortInAddress, MatButtonModule, CellTemplate, DenseTable, PageHeader, ProblemList, StatusMark],
   host: { class: 'ts-page' },
   template: `
     <div class="ts-stack">
@@ -58,7 +59,7 @@ const invitationTones: Readonly<Record<Invitation['state'], StatusTone>> = {
       </ts-page-header>
       <ts-problems [error]="people.error() ?? task.error()" />
       @if (list(); as list) {
-        <ts-table caption="People" [columns]="columns()" [rows]="list" [identify]="byId" [quiet]="isDisabled">
+        <ts-table tsSortInAddress caption="People" [columns]="columns()" [rows]="list" [identify]="byId" [quiet]="isDisabled">
           <ng-template tsCell="state" [tsCellRows]="list" let-row>
             <ts-status [tone]="row.state === 'active' ? 'kept' : 'ended'">{{ row.state }}</ts-status>
           </ng-template>

@@ -18,6 +18,7 @@ import { plural } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
+import { SortInAddress } from '../../../ui/sort-in-address';
 import { StatusMark } from '../../../ui/status-mark';
 import { type BinningSummary, type StartingPoint, Binnings, binningsOf } from '../data/binnings';
 import { ConstraintsFields, constraintsForm, constraintsOf } from '../ui/constraints-form';
@@ -35,6 +36,7 @@ const stateWords: Record<BinningSummary['state'], string> = {
   selector: 'ts-binnings-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
   imports: [
+    SortInAddress,
     ReactiveFormsModule,
     RouterLink,
     MatButtonModule,

@@ -13,12 +13,13 @@ import { Runs } from '../../../core/events/runs';
 import { Task } from '../../../core/task';
 import { Ask } from '../../../ui/ask';
 import type { Column } from '../../../ui/column';
-import { CellTemplate, DenseTable, type TableSort } from '../../../ui/dense-table';
+import { CellTemplate, DenseTable } from '../../../ui/dense-table';
 import { plural } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { Tombstone } from '../../../ui/tombstone';
 import { RunProgress } from '../../../ui/run-progress';
+import { SortInAddress } from '../../../ui/sort-in-address';
 import { type CharacteristicList, type CharacteristicSummary, Binnings, binningOf, characteristicsOf } from '../data/binnings';
 import { asPart, filtered, intervalText, partWords, riskTrend, shownParts, warningsOf } from '../ui/characteristic-filter';
 import { usualConstraints } from '../ui/constraints-form';
@@ -30,6 +31,7 @@ import type { ReclassAnswer, ReclassQuestion } from '../ui/reclass-dialog';
   selector: 'ts-characteristics-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
   imports: [
+    SortInAddress,
     RouterLink,
     MatButtonModule,
     MatCheckboxModule,
@@ -60,7 +62,6 @@ export class CharacteristicsPage {
   readonly binningId = input.required<string>();
   readonly search = input<string>();
   readonly show = input<string>();
-  readonly sort = input<string>();
 
   protected readonly binning = binningOf(() => this.binningId());
   private readonly labels = columnLabels(() => (this.binning.hasValue() ? this.binning.value().definitionId : null));
@@ -74,7 +75,9 @@ export class CharacteristicsPage {
   private readonly opened = computed(() => this.binning.hasValue() && this.binning.value().outOfTime === 'opened');
   /** Without an application date nothing can be told by month. */
   private readonly dated = computed(() => (this.all() ?? []).some(({ stability }) => stability.byMonth !== null));
-  protected readonly mayOpen = computed(() => this.current.can('develop') && this.binning.hasValue() && this.binning.value().erased === null);
+  protected readonly mayOpen = computed(
+    () => this.current.can('develop') && this.binning.hasValue() && this.binning.value().erased === null,
+  );
   protected readonly run = this.runs.run(() => (this.binning.hasValue() ? this.binning.value().runId : null));
   protected readonly all = computed(() => (this.list.hasValue() ? this.list.value().characteristics : null));
   protected readonly rows = computed(() => filtered(this.all() ?? [], this.part(), this.search() ?? ''));
@@ -93,14 +96,17 @@ export class CharacteristicsPage {
   protected readonly someIncluded = computed(() => this.picked().some(({ included }) => included));
   protected readonly someLeftOut = computed(() => this.picked().some(({ included }) => !included));
   protected readonly allChosen = computed(() => this.rows().length > 0 && this.rows().every(({ id }) => this.chosen().has(id)));
-  protected readonly order = computed<TableSort | null>(() => {
-    const [key, direction] = (this.sort() ?? 'iv.down').split('.');
-    return this.columns().some((column) => column.key === key) ? { key, descending: direction === 'down' } : null;
-  });
   protected readonly columns = computed<readonly Column<CharacteristicSummary>[]>(() => [
     { key: 'column', label: 'Characteristic', value: (row) => row.column, link: (row) => [row.id], sortable: true },
     ...(this.labels().size > 0
-      ? [{ key: 'label', label: 'Label', value: (row: CharacteristicSummary) => this.labels().get(row.column) ?? null, sortable: true }]
+      ? [
+          {
+            key: 'label',
+            label: 'Label',
+            value: (row: CharacteristicSummary) => this.labels().get(row.column) ?? null,
+            sortable: true,
+          },
+        ]
       : []),
     ...(this.mayEdit()
       ? [{ key: 'choose', label: 'Choose', value: (row: CharacteristicSummary) => (this.chosen().has(row.id) ? 'yes' : 'no') }]
@@ -191,10 +197,6 @@ export class CharacteristicsPage {
 
   protected type(event: Event): void {
     this.typed.next((event.target as HTMLInputElement).value);
-  }
-
-  protected reorder(sort: TableSort | null): void {
-    this.go({ sort: sort ? `${sort.key}.${sort.descending ? 'down' : 'up'}` : null });
   }
 
   protected go(queryParams: Record<string, string | null>): void {

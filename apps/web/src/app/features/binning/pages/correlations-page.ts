@@ -17,6 +17,7 @@ import { DASH, fixed, moment, plural } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
+import { SortInAddress } from '../../../ui/sort-in-address';
 import { Binnings, binningOf, correlationsOf } from '../data/binnings';
 import { CorrelationFigure } from '../ui/correlation-figure';
 import { type Standing, correlationFinding, inflationLimit, readCorrelations } from '../ui/correlation-reading';
@@ -26,6 +27,7 @@ import { type Standing, correlationFinding, inflationLimit, readCorrelations } f
   selector: 'ts-correlations-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
   imports: [
+    SortInAddress,
     RouterLink,
     MatButtonModule,
     MatFormFieldModule,
@@ -96,7 +98,7 @@ import { type Standing, correlationFinding, inflationLimit, readCorrelations } f
                 [rows]="reading.standings"
                 [identify]="identify"
                 [selected]="flagged"
-                [sort]="{ key: 'group', descending: false }"
+                tsSortInAddress="group.up"
               />
             </section>
           }

@@ -5,6 +5,7 @@ import type { Column } from '../../../ui/column';
 import { DenseTable } from '../../../ui/dense-table';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
+import { SortInAddress } from '../../../ui/sort-in-address';
 import { type BinningHistory, historyOf } from '../data/binnings';
 import { changeWords, endWords, historyFinding, stateWords } from '../ui/history-words';
 import { reasonWords } from '../ui/reason-words';
@@ -15,7 +16,7 @@ type Row = BinningHistory['edits'][number];
 @Component({
   selector: 'ts-history-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
-  imports: [RouterLink, MatButtonModule, DenseTable, PageHeader, ProblemList],
+  imports: [SortInAddress, RouterLink, MatButtonModule, DenseTable, PageHeader, ProblemList],
   host: { class: 'ts-page' },
   template: `
     <div class="ts-stack">
@@ -27,6 +28,7 @@ type Row = BinningHistory['edits'][number];
       </ts-problems>
       @if (edits(); as edits) {
         <ts-table
+          tsSortInAddress
           caption="Edits by hand"
           [columns]="columns"
           [rows]="edits"

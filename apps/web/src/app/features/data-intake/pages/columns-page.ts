@@ -14,9 +14,10 @@ import { MatButtonModule } from '@angular/material/button';
 import { Router, RouterLink } from '@angular/router';
 import { warnBeforeUnload } from '../../../core/unsaved-changes';
 import { type Column } from '../../../ui/column';
-import { CellTemplate, DenseTable, type TableSort } from '../../../ui/dense-table';
+import { CellTemplate, DenseTable } from '../../../ui/dense-table';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
+import { SortInAddress } from '../../../ui/sort-in-address';
 import { Tombstone } from '../../../ui/tombstone';
 import { DictionaryStore } from '../data/dictionary-store';
 import { DraftStore } from '../data/draft-store';
@@ -42,6 +43,7 @@ interface Row {
   changeDetection: ChangeDetectionStrategy.OnPush,
   host: { class: 'ts-page' },
   imports: [
+    SortInAddress,
     RouterLink,
     MatButtonModule,
     CarriedNote,
@@ -70,7 +72,10 @@ interface Row {
         <a matButton="filled" [routerLink]="['/models', modelId(), 'sample', sampleId(), 'definition']">Outcome and partition</a>
       </ts-page-header>
       @if (sample.value()?.erased; as erased) {
-        <ts-tombstone [erased]="erased">Profiles stay, without values that fewer than five rows hold; roles and labels are read and no longer changed.</ts-tombstone>
+        <ts-tombstone [erased]="erased"
+          >Profiles stay, without values that fewer than five rows hold; roles and labels are read and no longer
+          changed.</ts-tombstone
+        >
       }
       <ts-problems [error]="columns.error()" />
       <ts-problems [error]="draft.error()" />
@@ -95,8 +100,7 @@ interface Row {
           [quiet]="isQuiet"
           [selected]="isSelected"
           [activatable]="true"
-          [sort]="order()"
-          (sortChange)="reorder($event)"
+          tsSortInAddress
           (activate)="choose($event.profile.column)"
           empty="The file has not been read yet."
         >
@@ -196,7 +200,6 @@ export class ColumnsPage {
   readonly modelId = input.required<string>();
   readonly sampleId = input.required<string>();
   readonly column = input<string>();
-  readonly sort = input<string>();
 
   private readonly editor = viewChild<ElementRef<HTMLElement>>('part');
   protected readonly imported = signal(false);
@@ -227,15 +230,13 @@ export class ColumnsPage {
   protected readonly chosen = computed(
     () => this.rows().find(({ profile }) => profile.column === this.column()) ?? this.rows()[0] ?? null,
   );
-  protected readonly order = computed<TableSort | null>(() => {
-    const [key, direction] = (this.sort() ?? '').split('.');
-    return this.table().some((entry) => entry.key === key) ? { key, descending: direction === 'down' } : null;
-  });
 
   protected readonly table = computed<readonly Column<Row>[]>(() => [
     { key: 'column', label: 'Column', value: (row) => row.profile.column, sortable: true },
     // Without a label for any column it would only take room.
-    ...(this.rows().some(({ label }) => label !== '') ? [{ key: 'label', label: 'Label', value: (row: Row) => row.label, sortable: true }] : []),
+    ...(this.rows().some(({ label }) => label !== '')
+      ? [{ key: 'label', label: 'Label', value: (row: Row) => row.label, sortable: true }]
+      : []),
     {
       key: 'role',
       label: 'Role',
@@ -282,11 +283,6 @@ export class ColumnsPage {
     await this.router.navigate([], { queryParams: { column }, queryParamsHandling: 'merge', replaceUrl: true });
     // On a narrow screen the column's own part stands below the table.
     if (globalThis.innerWidth < 900) this.editor()?.nativeElement.scrollIntoView({ block: 'start' });
-  }
-
-  protected reorder(sort: TableSort | null): void {
-    const value = sort ? `${sort.key}.${sort.descending ? 'down' : 'up'}` : null;
-    void this.router.navigate([], { queryParams: { sort: value }, queryParamsHandling: 'merge', replaceUrl: true });
   }
 
   /** Roles and codes of the file go into the draft, which is saved first and read anew afterwards. */

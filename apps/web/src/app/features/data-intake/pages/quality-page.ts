@@ -16,6 +16,7 @@ import { plural, share } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
+import { SortInAddress } from '../../../ui/sort-in-address';
 import { Tombstone } from '../../../ui/tombstone';
 import { type ColumnQuality, Samples, columnQualityOf, oneSample, qualityOf } from '../data/samples';
 import { plain } from '../ui/findings';
@@ -33,6 +34,7 @@ import { SampleSteps } from '../ui/sample-steps';
   changeDetection: ChangeDetectionStrategy.OnPush,
   host: { class: 'ts-page' },
   imports: [
+    SortInAddress,
     RouterLink,
     MatButtonModule,
     CellTemplate,

@@ -8,10 +8,11 @@ import { takeUntilDestroyed } from '@angular/core/rxjs-interop';
 import { Subject, debounceTime } from 'rxjs';
 import { Session } from '../../../core/session';
 import { type Column } from '../../../ui/column';
-import { CellTemplate, DenseTable, type TableSort } from '../../../ui/dense-table';
+import { CellTemplate, DenseTable } from '../../../ui/dense-table';
 import { EmptyState } from '../../../ui/empty-state';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
+import { SortInAddress } from '../../../ui/sort-in-address';
 import { StatusMark } from '../../../ui/status-mark';
 import { modelStates, stateTone } from '../../../ui/version-state';
 import { type ModelSummary, inventory } from '../data/inventory';
@@ -34,6 +35,7 @@ const columns: readonly Column<ModelSummary>[] = [
   selector: 'ts-inventory-page',
   changeDetection: ChangeDetectionStrategy.OnPush,
   imports: [
+    SortInAddress,
     RouterLink,
     MatButtonModule,
     MatFormFieldModule,
@@ -70,7 +72,6 @@ export class InventoryPage {
 
   readonly search = input<string>();
   readonly state = input<string>();
-  readonly sort = input<string>();
 
   protected readonly columns = columns;
   protected readonly states = modelStates;
@@ -83,10 +84,6 @@ export class InventoryPage {
     const list = this.list();
     return list ? inventoryFinding(list, this.filtered()) : null;
   });
-  protected readonly order = computed<TableSort | null>(() => {
-    const [key, direction] = (this.sort() ?? '').split('.');
-    return columns.some((column) => column.key === key) ? { key, descending: direction === 'down' } : null;
-  });
   private readonly typed = new Subject<string>();
 
   constructor() {
@@ -97,10 +94,6 @@ export class InventoryPage {
 
   protected type(event: Event): void {
     this.typed.next((event.target as HTMLInputElement).value);
-  }
-
-  protected reorder(sort: TableSort | null): void {
-    this.go({ sort: sort ? `${sort.key}.${sort.descending ? 'down' : 'up'}` : null });
   }
 
   protected go(queryParams: Record<string, string | null>): void {
