@@ -16,7 +16,7 @@ beforeAll(async () => {
   support = await IntakeServer.start({ worker: false });
   web = await startServerProcess(support, 'web');
   worker = await startServerProcess(support, 'worker');
-  reader = new CorpusReader(support, web.url);
+  reader = new CorpusReader(support, new URL(web.url).origin);
 }, 120_000);
 afterAll(async () => {
   const [webMemory, workerMemory] = [peakMemoryMiB(web.process), peakMemoryMiB(worker.process)];

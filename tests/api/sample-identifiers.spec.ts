@@ -1,9 +1,11 @@
+import { FitSettings } from '@tallystone/contracts/fits/schema';
 import type { ColumnProfile, ColumnRole } from '@tallystone/contracts/samples/columns';
 import type { DraftContent } from '@tallystone/contracts/samples/definition';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { deriveKey } from '../../server/src/config/keys';
 import { hashText } from '../../server/src/profiling/personal';
 import { prepare } from '../../server/src/replay/prepare';
+import { buildSpecification } from '../../server/src/services/specifications/build-specification';
 import { loadPrepared } from '../../server/src/services/samples/definitions';
 import { openSample } from '../../server/src/storage/columnStore';
 import { inflateSegment } from '../../server/src/storage/segmentCoding';
@@ -196,6 +198,42 @@ describe('a column that a person says is an identifier', () => {
     expect(await modeller.ended(third.body.id as string)).toMatchObject({ state: 'succeeded', result: { number: 2 } });
     expect(await stored(id)).not.toContain('MARSH');
     expect((await profileOf(path, 'folder')).hashed).toBe(false);
+  });
+
+  it('keeps the rows of an applicant together, in hold-out and in folds, where reading has hashed it', async () => {
+    // Nearly all come once: reading takes it for what it is.
+    const customer = (row: number): string => `C-${10_000 + (row % 20 === 7 ? row - 7 : row)}`;
+    const lines = Array.from({ length: rowCount }, (_, row) => `${customer(row)},${(row * 37) % 5000},${row % 9 === 0 ? 1 : 0}`);
+    const text = `customer_id,income,bad\n${lines.join('\n')}\n`;
+    const { path } = await modeller.sample(modelId, text);
+    expect(await profileOf(path, 'customer_id')).toMatchObject({ hashed: true, distinct: 570 });
+    const started = await confirm(path, (content) => ({
+      ...columnsAs(content, { customer_id: 'group key' }),
+      partition: { by: 'seed', seed: 11, holdOutShare: 0.3, outOfTime: null },
+    }));
+    const run = await modeller.ended(started.body.id as string);
+    expect(run).toMatchObject({ state: 'succeeded' });
+    const { definitionId } = run.result as { definitionId: string };
+    const { body: definition } = await modeller.get(`${path}/definitions/${definitionId}`).expect(200);
+    expect(definition.content.partition).toMatchObject({ groups: 'customer_id', groupsBy: 'first-row' });
+    const kept = await loadPrepared(server.context.sequelize, definitionId);
+    for (let row = 7; row < rowCount; row += 20) expect(kept.partition[row]).toBe(kept.partition[row - 7]);
+    expect(new Set(kept.partition).size).toBe(2);
+
+    // The specification of a fit says it of its folds; from the file itself come the same partition and the same folds as from the hashes.
+    const specification = buildSpecification({
+      title: 'Groups of hashes',
+      head: definition.content,
+      characteristics: [],
+      settings: FitSettings.parse({ name: 'folds' }),
+    });
+    expect(specification.fit.folds).toMatchObject({ groups: 'customer_id', groupsBy: 'first-row' });
+    const file = sourceOfFile(await readColumns(inOnePiece(text), specification.data, { mostRows: 10_000, mostColumns: 10 }));
+    const stored = await openSample(server.context.sequelize, definition.sampleId as string, ['customer_id', 'income', 'bad']);
+    const [fromFile, fromStore] = [prepare(specification, file), prepare(specification, stored)];
+    expect(Buffer.from(kept.partition).equals(Buffer.from(fromFile.partition))).toBe(true);
+    expect(fromStore.folds).toEqual(fromFile.folds);
+    expect(new Set(fromFile.folds).size).toBe(specification.fit.folds && 'count' in specification.fit.folds ? specification.fit.folds.count + 1 : 0);
   });
 
   it('is tested by no rule of its values', async () => {

@@ -1,6 +1,6 @@
 import { z } from 'zod';
 import { ProblemItem } from '../problems/schema';
-import type { DataReading, Exclusion, OutcomeDefinition, Partition as SpecificationPartition } from '../specification/types';
+import type { DataReading, Exclusion, GroupsBy, OutcomeDefinition, Partition as SpecificationPartition } from '../specification/types';
 import { ColumnRole } from './columns';
 import { ColumnKind, ReadingChoices } from './reading';
 
@@ -205,6 +205,8 @@ export interface SampleDefinitionContent {
   declined: { column: string; values: string[]; method: 'none'; bands: number; uplift: number } | null;
   weight: { column: string } | null;
   partition: SpecificationPartition;
+  /** What the groups of the group key are drawn by, in the partition and in folds; by their values where it is left out. */
+  groupsBy?: GroupsBy;
   columns: DefinedColumn[];
 }
 

@@ -139,6 +139,8 @@ const declined: z.ZodType<DeclinedTreatment, unknown> = z.strictObject({
   uplift: finite.positive().default(1.5),
 });
 
+const groupsBy = z.enum(['value', 'first-row']);
+
 const partitionByColumn = checked<PartitionByColumn>(
   z.strictObject({ column: columnName, development: texts.min(1), holdOut: texts.default([]), outOfTime: texts.default([]) }),
   (value, report) => {
@@ -154,6 +156,7 @@ const partitionBySeed = checked<PartitionBySeed>(
     holdOutShare: finite.min(0).lt(1),
     // No default is written in: a specification from before this key keeps its fingerprint.
     groups: columnName.optional(),
+    groupsBy: groupsBy.optional(),
     outOfTime: z
       .strictObject({ column: columnName, from: isoDate.nullable().default(null), to: isoDate.nullable().default(null) })
       .nullable()
@@ -203,6 +206,7 @@ const folds = alternative<Folds>((value) =>
         count: z.number().int().min(2).max(MOST_BINS),
         seed,
         groups: columnName.nullable().default(null),
+        groupsBy: groupsBy.optional(),
         classing: foldClassing,
       }),
 );

@@ -93,12 +93,19 @@ export interface PartitionByColumn {
   outOfTime: string[];
 }
 
+/**
+ * What a group is drawn by: its value, which is the default, or the number of its first row in the file, where the value is not to be known (identifiers
+ * that are kept as hashes). An optional extension of the format.
+ */
+export type GroupsBy = 'value' | 'first-row';
+
 export interface PartitionBySeed {
   seed: number;
   /** Share of goods and of bads, each rounded, that become hold-out. */
   holdOutShare: number;
   /** A column whose values stay together, in development or in hold-out. An optional extension of the format. */
   groups?: string | undefined;
+  groupsBy?: GroupsBy | undefined;
   /** Rows whose ISO date lies in [from, to], both ends included, null = open. */
   outOfTime: { column: string; from: string | null; to: string | null } | null;
 }
@@ -182,7 +189,7 @@ export type LambdaChoice = { value: number } | { grid: number[] } | { count: num
 export type FoldClassing = 'once' | 'woe' | 'cuts';
 
 export type Folds =
-  { count: number; seed: number; groups: string | null; classing: FoldClassing } | { column: string; classing: FoldClassing };
+  { count: number; seed: number; groups: string | null; groupsBy?: GroupsBy | undefined; classing: FoldClassing } | { column: string; classing: FoldClassing };
 
 export type PenaltyRule = 'value' | 'minimum' | 'one-standard-error';
 

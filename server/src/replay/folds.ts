@@ -1,5 +1,6 @@
-import type { Folds } from '@tallystone/contracts/specification/types';
+import type { Folds, GroupsBy } from '@tallystone/contracts/specification/types';
 import type { Columns } from './columns';
+import { orderOfGroups } from './groups';
 import { orderByKey } from './order';
 import { ValueCounts, type ReplayProblem } from './problems';
 import { BAD, DEVELOPMENT, GOOD } from './types';
@@ -8,7 +9,7 @@ import { BAD, DEVELOPMENT, GOOD } from './types';
  * Folds 1 to K of the goods and bads of development; 0 for every other row.
  *
  * Seeded: goods then bads, each in the order of SHA-256 of `seed:fold:row` ("fold" as written); place p goes to fold p mod K + 1.
- * Grouped: groups in the order of SHA-256 of `seed:fold:value`, each to the fold with the smallest weight so far.
+ * Grouped: groups in the order of SHA-256 of `seed:fold:value` (or `seed:fold:first row`), each to the fold with the smallest weight so far.
  * By column: its distinct values in ascending order (as numbers if all are numbers) are folds 1, 2, ...
  */
 export function assignFolds(
@@ -40,7 +41,7 @@ export function assignFolds(
 }
 
 function byGroup(
-  folds: { count: number; seed: number },
+  folds: { count: number; seed: number; groupsBy?: GroupsBy | undefined },
   name: string,
   columns: Columns,
   rows: readonly number[],
@@ -63,15 +64,14 @@ function byGroup(
     (listed, count) => `${count} rows have no group in "${name}": ${listed}.`,
   );
   if (problem !== null) problems.push(problem);
-  // Groups are first put in order of their value, so that the order of rows in the file can never matter.
-  const groups = [...weightOf.keys()].sort((a, b) => (texts[a] < texts[b] ? -1 : 1));
+  const { groups, nameOf } = orderOfGroups(weightOf.keys(), column, folds.groupsBy);
   if (groups.length < folds.count) {
     const message = `"${name}" has ${groups.length} groups in development, fewer than the ${folds.count} folds.`;
     problems.push({ code: 'too-few-groups', message, where: { column: name, count: groups.length } });
   }
   const load = new Float64Array(folds.count);
   const foldOf = new Map<number, number>();
-  for (const index of orderByKey(groups.length, (place) => `${folds.seed}:fold:${texts[groups[place]]}`)) {
+  for (const index of orderByKey(groups.length, (place) => `${folds.seed}:fold:${nameOf(groups[place])}`)) {
     let lightest = 0;
     for (let fold = 1; fold < folds.count; fold++) if (load[fold] < load[lightest]) lightest = fold;
     load[lightest] += weightOf.get(groups[index]) ?? 0;

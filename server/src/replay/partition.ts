@@ -1,5 +1,6 @@
 import type { PartitionByColumn, PartitionBySeed, Specification } from '@tallystone/contracts/specification/types';
 import { isoDay, type Columns } from './columns';
+import { orderOfGroups } from './groups';
 import { orderByKey } from './order';
 import { ValueCounts, type ReplayProblem } from './problems';
 import { BAD, DEVELOPMENT, GOOD, HOLD_OUT, NO_OUTCOME, OUT, OUT_OF_TIME } from './types';
@@ -66,11 +67,11 @@ function bySeed(partition: PartitionBySeed, columns: Columns, outcome: Uint8Arra
 }
 
 /**
- * Whole groups become hold-out, in the order of SHA-256 of `seed:value`, as long as hold-out has fewer goods and bads than its share of them. Whoever is in
+ * Whole groups become hold-out, in the order of SHA-256 of `seed:value` (or `seed:first row`), as long as hold-out has fewer goods and bads than its share of them. Whoever is in
  * such a group goes with it, the indeterminate and the declined too; out-of-time stays what its date makes it.
  */
 function drawGroups(
-  { seed, holdOutShare }: PartitionBySeed,
+  { seed, holdOutShare, groupsBy }: PartitionBySeed,
   name: string,
   columns: Columns,
   outcome: Uint8Array,
@@ -95,12 +96,11 @@ function drawGroups(
   }
   const problem = faults.problem('missing-group', name, (listed, rows) => `${rows} row${rows === 1 ? ' has' : 's have'} no group in "${name}": ${listed}.`);
   if (problem !== null) problems.push(problem);
-  // Groups are first put in order of their value, so that the order of rows in the file can never matter.
-  const groups = [...present].sort((a, b) => (texts[a] < texts[b] ? -1 : 1));
+  const { groups, nameOf } = orderOfGroups(present, column, groupsBy);
   const wanted = Math.round(holdOutShare * total);
   const held = new Set<number>();
   let taken = 0;
-  for (const index of orderByKey(groups.length, (place) => `${seed}:${texts[groups[place]]}`)) {
+  for (const index of orderByKey(groups.length, (place) => `${seed}:${nameOf(groups[place])}`)) {
     if (taken >= wanted) break;
     held.add(groups[index]);
     taken += known[groups[index]];

@@ -208,6 +208,40 @@ describe('hold-out by groups', () => {
   });
 });
 
+describe('groups by their first row', () => {
+  const partition = { seed: 7, holdOutShare: 0.3, groups: 'branch', groupsBy: 'first-row', outOfTime: null };
+  const fit = { mixing: 1, lambda: { value: 0.01 }, folds: { count: 3, seed: 3, groups: 'branch', groupsBy: 'first-row' } };
+  const spec = specificationOf({ partition, fit });
+
+  it('are drawn in the order of SHA-256 of seed:row, of the first row of the whole file', () => {
+    const { partition, outcome } = prepare(spec, source);
+    const first = (name: string): number => sample['branch'].indexOf(name) + 1;
+    const names = [...new Set(sample['branch'])].sort((a, b) => (sha(`7:${first(a)}`) < sha(`7:${first(b)}`) ? -1 : 1));
+    const known = (row: number): boolean => outcome[row] <= GOOD;
+    const rowsOf = (name: string): number[] => Array.from(outcome.keys()).filter((row) => sample['branch'][row] === name && known(row));
+    const wanted = Math.round(0.3 * names.flatMap(rowsOf).length);
+    let taken = 0;
+    for (const name of names) {
+      const held = taken < wanted;
+      for (const row of rowsOf(name)) expect(partition[row], name).toBe(held ? HOLD_OUT : DEVELOPMENT);
+      if (held) taken += rowsOf(name).length;
+    }
+    expect(taken).toBeGreaterThanOrEqual(wanted);
+  });
+
+  it('are the same whatever the groups are called', () => {
+    const names = [...new Set(sample['branch'])];
+    const renamed = new Map(names.map((name, place) => [name, name === '' ? '' : sha(`${name}${place}`)]));
+    const hashed = { ...sample, branch: sample['branch'].map((name) => renamed.get(name) ?? '') };
+    const [clear, kept] = [prepare(spec, source), prepare(spec, sourceOf(hashed))];
+    expect(kept.partition).toEqual(clear.partition);
+    expect(kept.folds).toEqual(clear.folds);
+    // Drawn by value they are not.
+    const byValue = specificationOf({ partition: { ...partition, groupsBy: 'value' } });
+    expect(prepare(byValue, sourceOf(hashed)).partition).not.toEqual(prepare(byValue, source).partition);
+  });
+});
+
 describe('folds', () => {
   const foldsOf = (folds: object, more: object = {}) =>
     prepare(specificationOf({ fit: { mixing: 1, lambda: { value: 0.01 }, folds }, ...more }), source);

@@ -9,7 +9,7 @@ import type {
   SampleDefinitionContent,
 } from '@tallystone/contracts/samples/definition';
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
-import type { Exclusion, OutcomeDefinition, Partition } from '@tallystone/contracts/specification/types';
+import type { Exclusion, GroupsBy, OutcomeDefinition, Partition } from '@tallystone/contracts/specification/types';
 import { thin } from '../../profiling/kind';
 
 export interface DefinedSample {
@@ -53,7 +53,10 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
   if (draft.declined && draft.declined.values.length === 0)
     say('no-declined', 'Say which values of the decision mean declined, or treat nobody as declined.', { section: 'outcome' });
   draft.exclusions.forEach((rule, place) => checkRule(rule, place, profiles, identifiers, say));
-  const partition = partitionOf(draft, holder, say);
+  const groupKey = holder('group key');
+  // Of hashes the file knows nothing: their groups are drawn by the rows where they begin.
+  const groupsBy = groupKey && profiles.get(groupKey.column)?.hashed ? ({ groupsBy: 'first-row' } as const) : {};
+  const partition = partitionOf(draft, holder, groupsBy, say);
   if (problems.length > 0 || !outcome || !partition) return { content: null, problems };
 
   const weight = holder('weight');
@@ -68,6 +71,7 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
           : null,
       weight: weight ? { column: weight.column } : null,
       partition,
+      ...groupsBy,
       columns: draft.columns,
     },
     problems,
@@ -155,10 +159,10 @@ function checkColumn(entry: DefinedColumn, profile: ColumnProfile, say: Say): vo
     );
   if (role === 'characteristic' && kind === 'date')
     say('date-characteristic', `${column} is a date: no characteristic as it stands.`, where);
-  if (profile.hashed && !['identifier', 'not used'].includes(role)) {
+  if (profile.hashed && !['identifier', 'group key', 'not used'].includes(role)) {
     say(
       'kept-as-hashes',
-      `${column} identifies people and is kept as keyed hashes: it can be an identifier or not used, nothing else.`,
+      `${column} identifies people and is kept as keyed hashes: it can be an identifier, the group key or not used, nothing else.`,
       where,
     );
   }
@@ -268,7 +272,9 @@ function checkRuleOfOutcome(
 ): void {
   const section = 'outcome';
   if (indeterminate !== null && indeterminate >= bad)
-    say('rule-order', `Indeterminate begins at ${indeterminate} days and bad at ${bad}: indeterminate has to begin earlier.`, { section });
+    say('rule-order', `Indeterminate begins at ${indeterminate} days and bad at ${bad}: indeterminate has to begin earlier.`, {
+      section,
+    });
   const numeric = (column: string, what: string): void => {
     const profile = profiles.get(column);
     if (!profile) say('no-such-column', `The file has no column ${column}.`, { section, column });
@@ -281,7 +287,10 @@ function checkRuleOfOutcome(
   numeric(column, 'months on book');
   if (column === days.column) say('rule-columns', `${column} cannot hold days past due and months on book.`, { section, column });
   else if (draft.columns.some((entry) => entry.column === column && entry.role === 'characteristic'))
-    say('leaks', `${column} is part of the outcome and cannot also be a characteristic: set it to not used.`, { section, column });
+    say('leaks', `${column} is part of the outcome and cannot also be a characteristic: set it to not used.`, {
+      section,
+      column,
+    });
 }
 
 function outcomeOf({ rule, ...values }: DraftContent['outcome'], column: string): OutcomeDefinition {
@@ -300,7 +309,12 @@ function exclusionOf(rule: ExclusionRule): Exclusion {
   return rule.combine === 'all' ? { reason, all: tests } : { reason, any: tests };
 }
 
-function partitionOf(draft: DraftContent, holder: (role: ColumnRole) => DefinedColumn | undefined, say: Say): Partition | null {
+function partitionOf(
+  draft: DraftContent,
+  holder: (role: ColumnRole) => DefinedColumn | undefined,
+  groupsBy: { readonly groupsBy?: GroupsBy },
+  say: Say,
+): Partition | null {
   const { partition } = draft;
   const section = 'partition';
   if (partition.by === 'column') {
@@ -324,7 +338,7 @@ function partitionOf(draft: DraftContent, holder: (role: ColumnRole) => DefinedC
   }
   const { seed, holdOutShare, outOfTime } = partition;
   const group = holder('group key');
-  const groups = group && { groups: group.column };
+  const groups = group && { groups: group.column, ...groupsBy };
   if (!outOfTime) return { seed, holdOutShare, ...groups, outOfTime: null };
   const date = holder('application date');
   if (!date)

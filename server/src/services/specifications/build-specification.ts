@@ -60,7 +60,7 @@ export function buildSpecification(parts: SpecificationParts): Specification {
     partition: head.partition,
     characteristics,
     woe: settings.woe,
-    fit: fitOf(settings, head.columns.find(({ role }) => role === 'group key')?.column ?? null),
+    fit: fitOf(settings, head),
     recalibration: null,
     scaling: parts.scaling ?? defaultScaling,
     bands: parts.bands ?? defaultBands,
@@ -77,13 +77,15 @@ function declinedOf(head: SampleDefinitionContent, { declined }: FitSettingsOfFi
 }
 
 /** Rows of one group key stay in one fold. */
-function fitOf(settings: FitSettingsOfFit, groups: string | null): FitSettings {
+function fitOf(settings: FitSettingsOfFit, { columns, groupsBy }: SampleDefinitionContent): FitSettings {
+  const groups = columns.find(({ role }) => role === 'group key')?.column ?? null;
+  const { count, seed, classing } = settings.folds;
   return {
     mixing: settings.mixing,
     standardize: settings.standardize,
     lambda: settings.lambda,
     choose: 'one-standard-error',
-    folds: { count: settings.folds.count, seed: settings.folds.seed, groups, classing: settings.folds.classing },
+    folds: { count, seed, groups, ...(groups !== null && groupsBy && { groupsBy }), classing },
     refit: null,
   };
 }
