@@ -5,6 +5,7 @@ export * from './engine/index';
 export * from './binning/weight-of-evidence';
 export * from './binning/assignment';
 export * from './scaling/points';
+export * from './distributions/noncentral';
 export * from './distributions/tails';
 export * from './metrics/ordering';
 export * from './metrics/discrimination';

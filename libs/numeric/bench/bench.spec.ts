@@ -1,3 +1,4 @@
+import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { auc } from '../metrics/discrimination';
 import { weightOfEvidence } from '../binning/weight-of-evidence';
@@ -211,6 +212,48 @@ describe('edits of cuts', () => {
     const values = fine.edges.map((edge) => readBench(fine, { ...one, edges: [edge] }).informationValue);
     expect(readBench(fine, split.bins).informationValue).toBe(Math.max(...values));
     expect(splitNumeric(fine, { ...bins, edges: [10, 20, 30, 40] }, 1)).toBeNull();
+  });
+
+  it('splits within the constraints where that can be, by their criterion, and says where it cannot', () => {
+    const wish = { smallestShare: 0.2, smallestGoods: 20, smallestBads: 20 };
+    fc.assert(
+      fc.property(
+        fc.array(fc.tuple(fc.integer({ min: 0, max: 300 }), fc.integer({ min: 0, max: 60 })), { minLength: 4, maxLength: 12 }),
+        fc.constantFrom('information value', 'deviance'),
+        (cells, criterion) => {
+          const edges = cells.slice(1).map((_, place) => 10 * (place + 1));
+          const [goods, bads] = [cells.map(([good]) => good), cells.map(([, bad]) => bad)];
+          const counts = (extra: number[]) => ({ rows: extra.map((good, place) => good + bads[place]), goods: extra, bads });
+          const development = { ...counts(goods), rows: [...counts(goods).rows, 0], goods: [...goods, 0], bads: [...bads, 0] };
+          const one: FineClasses = { ...fine, edges, special: [], development, holdOut: development, outOfTime: null };
+          const whole: NumericBins = { kind: 'numeric', edges: [], special: [], missing: 'own' };
+          const split = splitNumeric(one, whole, 0, { ...wish, criterion });
+          const sides = edges.map((edge) => {
+            const at = edges.indexOf(edge) + 1;
+            const sum = (values: number[]): number => values.reduce((total, value) => total + value, 0);
+            return [goods, bads].flatMap((values) => [sum(values.slice(0, at)), sum(values.slice(at))]);
+          });
+          const total = sides.length > 0 ? sides[0].reduce((sum, count) => sum + count, 0) : 0;
+          const possible = sides.map(([g, h, b, c]) => g > 0 && h > 0 && b > 0 && c > 0);
+          const within = sides.map(
+            ([g, h, b, c]) => Math.min(g + b, h + c) >= 0.2 * total && Math.min(g, h) >= 20 && Math.min(b, c) >= 20,
+          );
+          if (!possible.includes(true)) return expect(split).toBeNull();
+          const term = (count: number, of: number): number => (count > 0 ? count * Math.log(count / of) : 0);
+          const value = ([g, h, b, c]: number[]): number =>
+            criterion === 'deviance'
+              ? term(g, g + b) + term(b, g + b) + term(h, h + c) + term(c, h + c)
+              : (g / (g + h) - b / (b + c)) * Math.log(g / (g + h) / (b / (b + c))) +
+                (h / (g + h) - c / (b + c)) * Math.log(h / (g + h) / (c / (b + c)));
+          const allowed = sides.filter((_, place) => (within.includes(true) ? within[place] : possible[place]));
+          const chosen = sides[edges.indexOf(split!.bins.edges[0])];
+          expect(allowed).toContain(chosen);
+          expect(value(chosen)).toBeCloseTo(Math.max(...allowed.map(value)), 8);
+          expect(split!.what.includes('less than the constraints ask for')).toBe(!within.includes(true));
+        },
+      ),
+      { numRuns: 500 },
+    );
   });
 
   it('moves special codes and missing', () => {

@@ -1,7 +1,5 @@
-import { weightOfEvidence } from '../binning/weight-of-evidence';
-import type { EditOf } from './numeric-edits';
-import { usualSmoothing } from './reading';
-import { binOfSlots, layoutOf, sumSlots } from './slots';
+import { type SplitWish, bestSplit } from './best-split';
+import { type EditOf, smallWords } from './numeric-edits';
 import type { CategoricalBins, FineClasses, Place } from './types';
 
 /** Manual edits of a categorical characteristic. Groups stay in order of risk, lowest bad rate first. */
@@ -60,23 +58,29 @@ export function mergeGroups(fine: FineClasses, bins: CategoricalBins, a: number,
   };
 }
 
-/** Splits a group in two along its categories' order of risk, where the information value becomes largest. */
-export function splitGroup(fine: FineClasses, bins: CategoricalBins, group: number): EditOf<CategoricalBins> | null {
+/** Splits a group in two along its categories' order of risk, at the best place: as `splitNumeric`. */
+export function splitGroup(
+  fine: FineClasses,
+  bins: CategoricalBins,
+  group: number,
+  wish: SplitWish | null = null,
+): EditOf<CategoricalBins> | null {
   const members = bins.groups[group];
   if (!members || members.length < 2) return null;
   const ordered = riskOrder(
     fine,
     members.map((category) => [category]),
   ).map((index) => members[index]);
-  let best: { bins: CategoricalBins; low: string[]; high: string[]; informationValue: number } | null = null;
-  for (let size = 1; size < ordered.length; size++) {
-    const [low, high] = [ordered.slice(0, size), ordered.slice(size)];
-    const candidate = rebuilt(fine, bins, [...bins.groups.map((one, index) => (index === group ? low : one)), high]);
-    const sums = sumSlots(fine.development, binOfSlots(fine, candidate), layoutOf(candidate).length);
-    const { informationValue } = weightOfEvidence(sums.goods, sums.bads, usualSmoothing);
-    if (best === null || informationValue > best.informationValue) best = { bins: candidate, low, high, informationValue };
-  }
-  return best && { kind: 'bin split', what: `Split ${listed(best.low)} from ${listed(best.high)}`, bins: best.bins };
+  const candidates = ordered.slice(1).map((_, place) => {
+    const [low, high] = [ordered.slice(0, place + 1), ordered.slice(place + 1)];
+    const split = rebuilt(fine, bins, [...bins.groups.map((one, index) => (index === group ? low : one)), high]);
+    const placeOf = (part: readonly string[]): number => split.groups.findIndex((one) => one.includes(part[0]));
+    return { low, high, bins: split, parts: [placeOf(low), placeOf(high)] as const };
+  });
+  const best = bestSplit(fine, candidates, wish);
+  if (best === null) return null;
+  const { low, high, bins: split } = best.candidate;
+  return { kind: 'bin split', what: `Split ${listed(low)} from ${listed(high)}${smallWords(best.small)}`, bins: split };
 }
 
 export function moveUnseen(bins: CategoricalBins, place: 'neutral' | number, label: string): EditOf<CategoricalBins> | null {

@@ -9,6 +9,7 @@ export * from './interval';
 export * from './months';
 export * from './warnings';
 export * from './round';
+export * from './best-split';
 export * from './numeric-edits';
 export * from './categorical-edits';
 export * from './carry';

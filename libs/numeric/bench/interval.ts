@@ -1,10 +1,6 @@
 import { informationValueInterval, type InformationValueInterval } from '../binning/information-value';
 import { usualSmoothing, type BenchReading } from './reading';
 
-/** Enough for an interval that is read to two decimals; the seed is fixed, so that the same bins have the same interval everywhere. */
-const resamples = 200;
-const seed = 1;
-
 /**
  * 95 % interval of the information value of the bins as they are, from development's counts. Null without a good or without a bad.
  * @example readingInterval(readBench(fine, bins))?.upper
@@ -14,5 +10,5 @@ export function readingInterval(reading: BenchReading): InformationValueInterval
   const goods = reading.bins.map(({ figures }) => figures.development?.goods ?? 0);
   const bads = reading.bins.map(({ figures }) => figures.development?.bads ?? 0);
   if (!goods.some((count) => count > 0) || !bads.some((count) => count > 0)) return null;
-  return informationValueInterval(goods, bads, { resamples, seed, smoothing: usualSmoothing });
+  return informationValueInterval(goods, bads, { smoothing: usualSmoothing });
 }

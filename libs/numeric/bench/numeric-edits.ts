@@ -1,8 +1,6 @@
-import { weightOfEvidence } from '../binning/weight-of-evidence';
-import { usualSmoothing } from './reading';
+import { type SplitWish, bestSplit } from './best-split';
 import { rangeLabel } from './labels';
 import { rounderNear } from './round';
-import { binOfSlots, layoutOf, sumSlots } from './slots';
 import type { FineClasses, NumericBins, Place } from './types';
 
 /** Manual edits of a numeric characteristic. Each gives new bins with one sentence about what was done, or null where it cannot be done. */
@@ -92,24 +90,32 @@ export function mergeNumeric(fine: FineClasses, bins: NumericBins, bin: number):
 }
 
 /**
- * Splits a bin where the information value of the characteristic becomes largest; both parts must have goods and bads.
- * Null where the bin is a single fine class.
+ * Splits a bin at its best cut: both parts as large as the constraints ask where that can be, best by their criterion, or by information value without any.
+ * Null where the bin is a single fine class, or no cut leaves goods and bads on both sides.
+ * @param wish the constraints of the characteristic; null without any
  */
-export function splitNumeric(fine: FineClasses, bins: NumericBins, bin: number): EditOf<NumericBins> | null {
+export function splitNumeric(
+  fine: FineClasses,
+  bins: NumericBins,
+  bin: number,
+  wish: SplitWish | null = null,
+): EditOf<NumericBins> | null {
   const [from, to] = [bins.edges[bin - 1] ?? -Infinity, bins.edges[bin] ?? Infinity];
-  let best: { bins: NumericBins; edge: number; informationValue: number } | null = null;
-  for (const edge of fine.edges) {
-    if (edge <= from || edge >= to) continue;
-    const candidate = withCut(bins, bin, edge);
-    const sums = sumSlots(fine.development, binOfSlots(fine, candidate), layoutOf(candidate).length);
-    const whole = [bin, bin + 1].every((part) => sums.goods[part] > 0 && sums.bads[part] > 0);
-    if (!whole) continue;
-    const { informationValue } = weightOfEvidence(sums.goods, sums.bads, usualSmoothing);
-    if (best === null || informationValue > best.informationValue) best = { bins: candidate, edge, informationValue };
-  }
+  const candidates = fine.edges
+    .filter((edge) => edge > from && edge < to)
+    .map((edge) => ({ edge, bins: withCut(bins, bin, edge), parts: [bin, bin + 1] as const }));
+  const best = bestSplit(fine, candidates, wish);
   if (best === null) return null;
-  return { kind: 'bin split', what: `Split ${rangeLabel(bins.edges, bin, fine.closed)} at ${best.edge}`, bins: best.bins };
+  const { edge, bins: split } = best.candidate;
+  return {
+    kind: 'bin split',
+    what: `Split ${rangeLabel(bins.edges, bin, fine.closed)} at ${edge}${smallWords(best.small)}`,
+    bins: split,
+  };
 }
+
+/** Said of a split that no cut within the constraints could make. */
+export const smallWords = (small: boolean): string => (small ? ', into less than the constraints ask for' : '');
 
 /** Joins a special code to a bin of the cuts or groups, or gives it its own. */
 export function moveSpecial<B extends { readonly special: readonly Place[] }>(

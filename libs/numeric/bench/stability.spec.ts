@@ -29,8 +29,23 @@ describe('stability on the bench', () => {
     expect(benchStability({ ...fine, outOfTime: null }, bins).outOfTime).toBeNull();
   });
 
-  it('cannot be told where a bin is empty on one side, nor without rows', () => {
-    expect(benchStability({ ...fine, holdOut: counts([240, 200, 160, 0, 50, 0]) }, bins).holdOut).toBeNull();
+  it('adds half a row to every bin where one is empty on one side, and says which', () => {
+    const holdOut = counts([240, 200, 160, 0, 50, 0]);
+    expect(benchStability({ ...fine, holdOut }, bins).holdOut).toBe(
+      populationStability([500, 700, 200, 100, 0], [240, 360, 0, 50, 0], 0.5),
+    );
+    // Most of out-of-time carries a code that development does not know.
+    const outOfTime = counts([50, 60, 40, 30, 420, 0]);
+    const development = { rows: [500, 400, 300, 200, 0, 0], goods: [450, 340, 240, 150, 0, 0], bads: [50, 60, 60, 50, 0, 0] };
+    const reading = readBench({ ...fine, development, outOfTime }, bins);
+    expect(reading.stability.outOfTime).toBeGreaterThan(3);
+    const warning = benchWarnings(reading, limits).find(({ code }) => code === 'unstable-out-of-time');
+    expect(warning?.message).toContain('a large change');
+    expect(warning?.message).toContain('none: no row of development; half a row is added to every bin');
+    expect(warning?.bins).toEqual([3]);
+  });
+
+  it('cannot be told without rows', () => {
     expect(benchStability({ ...fine, holdOut: counts([0, 0, 0, 0, 0, 0]) }, bins).holdOut).toBeNull();
   });
 

@@ -14,7 +14,8 @@ export const largeChange = 0.25;
 
 /**
  * CSI of each later partition against development over the bins as they are, by rows. Categories that development has not seen and that stay
- * neutral are a class of their own, as in a result. Null where a partition has no rows or a bin is empty on one side only.
+ * neutral are a class of their own, as in a result. Where a class is empty on one side only, which says more than any other, half a row is added to every
+ * class of both sides: the index has no value otherwise. Null where a partition has no rows.
  *
  * @example benchStability(fine, bins).holdOut // 0.004
  * Source: as `populationStability`.
@@ -31,7 +32,8 @@ function indexOf(expected: BinSums, actual: BinSums): number | null {
   const neutral = expected.outside + actual.outside > 0;
   const classes = ({ rows, outside }: BinSums): number[] => (neutral ? [...rows, outside] : [...rows]);
   const [from, to] = [classes(expected), classes(actual)];
-  return from.some((rows) => rows > 0) && to.some((rows) => rows > 0) ? populationStability(from, to) : null;
+  if (!from.some((rows) => rows > 0) || !to.some((rows) => rows > 0)) return null;
+  return populationStability(from, to) ?? populationStability(from, to, 0.5);
 }
 
 /**

@@ -99,10 +99,18 @@ export function benchWarnings(reading: BenchReading, limits: SizeLimits, drift: 
     const rows = reading.totals[partition]?.rows ?? 0;
     if (index === null || !isUnstable(index, reading.totals.development?.rows ?? 0, rows, reading.bins.length)) continue;
     const size = index > largeChange ? 'a large' : 'a moderate';
+    const emptied = emptyOnOneSide(reading, partition);
+    const names = emptied.map(
+      (bin) =>
+        `${reading.bins[bin].label}: no row of ${reading.bins[bin].figures.development?.rows ? stabilityWords[partition] : 'development'}`,
+    );
+    if ((reading.totals.development?.outside ?? 0) === 0 && (reading.totals[partition]?.outside ?? 0) > 0)
+      names.push('unseen categories: no row of development');
+    const smoothed = names.length > 0 ? ` ${names.join('; ')}; half a row is added to every bin.` : '';
     warnings.push({
       code,
-      message: `CSI of ${stabilityWords[partition]} against development is ${index.toFixed(2)}, ${size} change (common practice: from 0.10, from 0.25).`,
-      bins: [],
+      message: `CSI of ${stabilityWords[partition]} against development is ${index.toFixed(2)}, ${size} change (common practice: from 0.10, from 0.25).${smoothed}`,
+      bins: emptied,
     });
   }
   if (drift?.beyondChance && drift.deviation >= largeMonthlyDrift) {
@@ -144,6 +152,13 @@ export function reversedBins(reading: BenchReading, partition: PartitionName): n
       reversed.push(places[i].index);
   }
   return reversed;
+}
+
+/** Bins that have rows in development or in the partition, and none in the other. */
+function emptyOnOneSide(reading: BenchReading, partition: PartitionName): number[] {
+  return reading.bins.flatMap(({ figures }, bin) =>
+    (figures.development?.rows ?? 0) > 0 === (figures[partition]?.rows ?? 0) > 0 ? [] : [bin],
+  );
 }
 
 function difference(a: BinFigures | null, b: BinFigures | null): { by: number; error: number } | null {

@@ -5,7 +5,7 @@ import type { ColumnSegment } from '../reading/index';
  * row: 53 bits of them are compared. Among a million rows a false pair is expected once in 18,000 files.
  */
 export class DuplicateRows {
-  private keys = new Float64Array(65_536);
+  private keys = new Float64Array(1024);
   private rows = 0;
 
   add(columns: readonly ColumnSegment[], rows: number): void {

@@ -39,7 +39,7 @@ export async function openChunk(key: Buffer, fileId: string, sequence: number, c
   // GCM leaves nothing for the end; this checks the tag.
   decipher.final();
   // In one piece, with a little room so that its end is found in it: many small ones would have to be copied together.
-  return expand(opened, { chunkSize: chunkBytes + 1024 });
+  return expand(opened, { chunkSize: Math.min(chunkBytes + 1024, Math.max(1 << 16, 32 * opened.length)) });
 }
 
 /** Appends one chunk; the caller moves the file's offset in the same transaction. */

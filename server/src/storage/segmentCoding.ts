@@ -112,7 +112,9 @@ export function decodeSegment(content: Uint8Array): TextSegment {
 }
 
 /** The bytes of a stored segment; the first is its form. */
-export const inflateSegment = (content: Uint8Array): Buffer => inflateRawSync(content, { chunkSize: 1 << 18 });
+export const inflateSegment = (content: Uint8Array): Buffer =>
+  // A small segment is not given a large buffer, which would be held as long as a view on it.
+  inflateRawSync(content, { chunkSize: Math.min(1 << 18, Math.max(1 << 12, 16 * content.length)) });
 
 /** Of form 1, inflated. */
 export function decodeTexts(bytes: Buffer): TextSegment {

@@ -47,6 +47,15 @@ let kept: { coder: SegmentCoder; form: string; mostRows: number } | null = null;
 let dropping: NodeJS.Timeout | undefined;
 const idle = 2000;
 
+/** Kept for good: every one has a page of memory of its own, which is given back late. */
+let hashing: { hash: KeyedHash; key: Buffer } | null = null;
+
+function keyedHash(bytes: Uint8Array): KeyedHash {
+  const key = Buffer.from(bytes);
+  if (!hashing?.key.equals(key)) hashing = { hash: new KeyedHash(key), key };
+  return hashing.hash;
+}
+
 /** Codes the records of one segment into columns as they are stored, off the event loop. */
 export const codeSegment: Task<CodePayload, CodeAnswer> = (payload, control) => {
   const { choices, header } = payload;
@@ -80,10 +89,9 @@ export const codeSegment: Task<CodePayload, CodeAnswer> = (payload, control) => 
   const missing = new Set(['', ...choices.missing]);
   const personal =
     payload.personal ?? coder.columns.map((column, position) => personalInSegment(header[position], column, missing));
-  const key = new KeyedHash(Buffer.from(payload.key));
   const contents = coder.columns.map((column, position) => {
     if (control.cancelled()) throw new Error('cancelled');
-    return encodePacked(personal[position] === null ? column : hashColumn(column, key, missing));
+    return encodePacked(personal[position] === null ? column : hashColumn(column, keyedHash(payload.key), missing));
   });
   const keys = coder.keys.slice(0, coder.rows);
   control.transfer(keys.buffer);

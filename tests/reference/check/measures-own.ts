@@ -22,6 +22,7 @@ import {
   logLoss,
   murphyDecomposition,
   normalQuantile,
+  noncentralChiSquareTail,
   normalTail,
   pairedDelong,
   populationStability,
@@ -119,6 +120,9 @@ export function ownFigures(drawn: Drawn): Record<string, ArrayLike<number>> {
     'binomial-tail': counts.map((each) => binomialTail(each.x, each.n, each.p)),
     'binomial-critical': counts.map(({ n, p }) => binomialCriticalCount(n, p, 0.99)),
     'chi-square-tail': tails.map(({ value, degrees }) => chiSquareTail(value, degrees)),
+    'noncentral-chi-square-tail': tails.map(({ value, degrees, probability }) =>
+      noncentralChiSquareTail(value, degrees, 10 * probability + value / 2),
+    ),
     'chi-square-quantile': tails.map(({ probability, degrees }) => chiSquareQuantile(probability, degrees)),
     'normal-tail': tails.map(({ value }) => normalTail(Math.sqrt(value))),
     'normal-quantile': tails.map(({ probability }) => normalQuantile(probability)),
@@ -170,6 +174,8 @@ const titles: Record<string, { title: string; tolerance: number; relative?: bool
   'binomial-tail': { title: 'binomial tail', tolerance: 1e-9, relative: true },
   'binomial-critical': { title: 'binomial critical count', tolerance: 0 },
   'chi-square-tail': { title: 'chi-square tail', tolerance: 1e-10, relative: true },
+  // R's own precision of noncentral tails is absolute, 1e-12.
+  'noncentral-chi-square-tail': { title: 'noncentral chi-square tail', tolerance: 1e-10 },
   'chi-square-quantile': { title: 'chi-square quantile', tolerance: 1e-10, relative: true },
   'normal-tail': { title: 'normal tail', tolerance: 1e-12, relative: true },
   'normal-quantile': { title: 'normal quantile', tolerance: 1e-13 },

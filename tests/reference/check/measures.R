@@ -76,6 +76,7 @@ emit("binomial-critical", by(function(x, n, p) qbinom(0.99, n, p) + 1))
 # Tails and quantiles.
 t <- read.csv(file.path(folder, "tails.csv"))
 emit("chi-square-tail", pchisq(t$value, t$degrees, lower.tail = FALSE))
+emit("noncentral-chi-square-tail", pchisq(t$value, t$degrees, 10 * t$probability + t$value / 2, lower.tail = FALSE))
 emit("chi-square-quantile", qchisq(t$probability, t$degrees))
 emit("normal-tail", pnorm(sqrt(t$value), lower.tail = FALSE))
 emit("normal-quantile", qnorm(t$probability))

@@ -23,6 +23,8 @@ export interface FieldForm {
   readonly width: number;
   /** Most bytes of a field; the careful scanner decides by characters. */
   readonly mostBytes: number;
+  /** Most rows that there will be, where it is known. */
+  readonly mostRows?: number;
 }
 
 /**
@@ -40,7 +42,7 @@ export class FieldIndex {
 
   constructor(private readonly form: FieldForm) {
     // About 32,768 fields: their places and their text stay near the processor.
-    this.mostRows = Math.min(4096, Math.max(8, Math.floor(32_768 / form.width)));
+    this.mostRows = Math.min(4096, Math.max(8, Math.floor(32_768 / form.width)), form.mostRows ?? Infinity);
     this.starts = new Int32Array(this.mostRows * form.width);
     this.ends = new Int32Array(this.mostRows * form.width);
     for (const byte of [0, LF, CR, form.delimiter]) this.special[byte] = 1;

@@ -268,7 +268,8 @@ export class BenchPage {
     const fine = this.bench.fine();
     const bin = this.bin();
     if (!bins || !fine || bin === null) return;
-    this.edit(bins.kind === 'numeric' ? splitNumeric(fine, bins, bin) : splitGroup(fine, bins, bin));
+    const wish = this.bench.detail()?.constraints ?? null;
+    this.edit(bins.kind === 'numeric' ? splitNumeric(fine, bins, bin, wish) : splitGroup(fine, bins, bin, wish));
   }
 
   protected group(target: number | 'new'): void {
