@@ -73,7 +73,7 @@ afterAll(() => world.server.stop());
 
 describe('a binning of new data that starts from an earlier one', () => {
   it('keeps the edits that make sense and says why the others do not', async () => {
-    expect(second.from).toEqual({ id: world.binning.id, name: world.binning.name, carried: 2, notCarried: 2 });
+    expect(second.from).toEqual({ id: world.binning.id, name: world.binning.name, carried: 2, notCarried: 2, notHere: [] });
     const { detail } = await benchOf(world.modeller, second.id, 'age');
     expect(detail.current).toMatchObject({ edges: expect.arrayContaining([33.25]) as number[] });
     expect(detail.fine.edges).toContain(33.25);
@@ -160,6 +160,37 @@ describe('a binning of new data that starts from an earlier one', () => {
     expect(history.edits[0].ended).toMatchObject({ by: 'marian', reason: null });
     expect(Date.parse(history.edits[0].ended!.at)).toBeGreaterThanOrEqual(Date.parse(history.edits[0].at));
     await world.stranger.get(`/api/binnings/${second.id}/edits`).expect(404);
+  });
+
+  it('says what was decided about columns that are not classed here, and counts it as not carried over', async () => {
+    // Without utilisation and region, and with homes that only later applicants state.
+    const [, ...rows] = applicantsWithRisk(3000).trimEnd().split('\n');
+    const lines = rows.map((row) => {
+      const [id, day, age, , home, , branch, gender, bad] = row.split(',');
+      return [id, day, age, day < '2025' ? '' : home, branch, gender, bad].join(',');
+    });
+    const csv = ['application_id,applied_on,age,home,branch_code,gender,bad', ...lines].join('\n');
+    const { definitionId } = await defineApplicants(world.modeller, world.modelId, `${csv}\n`);
+    const started = await world.modeller
+      .post(`/api/models/${world.modelId}/binnings`)
+      .send({ definitionId, name: 'On fewer columns', fromBinningId: world.binning.id })
+      .expect(201);
+    expect((await world.modeller.ended(started.body.runId as string)).state).toBe('succeeded');
+    const { from } = (await world.modeller.get(`/api/binnings/${started.body.id}`).expect(200)).body as Binning;
+    const noColumn = 'The sample has no such column.';
+    expect(from).toMatchObject({
+      carried: 2,
+      notCarried: 2,
+      notHere: [
+        { column: 'home', edits: 1, leftOut: null, why: 'No development row has a value.' },
+        { column: 'region', edits: 0, leftOut: 'Not known at application', why: noColumn },
+        { column: 'utilisation', edits: 1, leftOut: null, why: noColumn },
+      ],
+    });
+    const record = await recordOf(world, started.body.id as string);
+    const lost = record.filter(({ action }) => action === 'binning.not-carried').reverse();
+    expect(lost.map(({ reason }) => reason)).toEqual(['No development row has a value.', noColumn, noColumn]);
+    expect(lost[0]).toMatchObject({ detail: { column: 'home', edits: 1, leftOut: null } });
   });
 
   it('starts only from a binning of the same model that is ready', async () => {

@@ -66,6 +66,7 @@ export const everyText: VersionTexts = {
   penaltyReason: 'The one-standard-error rule keeps the model small.',
   businessSense: 'Each characteristic kept has a reading that lenders know.',
   performanceInterpretation: 'It ranks well; calibration holds.',
+  trendExceptions: 'None, or a turn that lenders know.',
   signExceptions: 'None, or explained by correlation with a stronger characteristic.',
   limitations: 'A single sample.',
   monitoringPlan: 'PSI and AUC each quarter; redevelopment above 0.25.',

@@ -15,6 +15,7 @@ export const binningEvents = [
     }),
   }),
   recordEvent('binning.classed', 'binning', { after: z.strictObject({ characteristics: z.int() }) }),
+  recordEvent('binning.not-carried', 'binning', { detail: z.strictObject({ column, edits: z.int(), leftOut: z.string().nullable() }), reason: z.string() }),
   recordEvent('binning.edited', 'binning-characteristic', {
     before: Bins,
     after: Bins,

@@ -23,6 +23,18 @@ export const NewBinning = z.strictObject({
 });
 export type NewBinning = z.input<typeof NewBinning>;
 
+/** What an earlier binning decided about a column that the new one does not class: nothing of it is carried over. */
+export const NotHere = z.object({
+  column: z.string(),
+  /** Edits by hand in effect. */
+  edits: z.int(),
+  /** Why it was left out; null where it was included. */
+  leftOut: z.string().nullable(),
+  /** Why it is not classed here. */
+  why: z.string(),
+});
+export type NotHere = z.infer<typeof NotHere>;
+
 export const BinningSummary = z.object({
   id: z.uuid(),
   modelId: z.uuid(),
@@ -40,8 +52,11 @@ export const BinningSummary = z.object({
   /** Manual edits in effect, and how many of them have no reason yet. */
   edits: z.int(),
   editsWithoutReason: z.int(),
-  /** The earlier binning it started from, with how many of its edits were carried over and how many were not. */
-  from: z.object({ id: z.uuid(), name: z.string(), carried: z.int(), notCarried: z.int() }).nullable(),
+  /**
+   * The earlier binning it started from, with how many of its edits were carried over and how many were not; of these, those of columns that are not
+   * classed here.
+   */
+  from: z.object({ id: z.uuid(), name: z.string(), carried: z.int(), notCarried: z.int(), notHere: z.array(NotHere) }).nullable(),
   createdBy: z.string(),
   createdAt: z.string(),
   /** Set once the rows of its sample were erased: it is read and no longer changed. */

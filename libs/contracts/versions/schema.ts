@@ -66,6 +66,7 @@ export const versionTextKeys = [
   'businessSense',
   'performanceInterpretation',
   'signExceptions',
+  'trendExceptions',
   'limitations',
   'monitoringPlan',
   'changeReasons',

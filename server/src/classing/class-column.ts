@@ -16,13 +16,11 @@ import {
   TooManyCategories,
   fineClasses,
   fineEntry,
+  mostFineEdges,
   slotsOfTexts,
   splitFineClasses,
   tallyColumn,
 } from './fine-classes';
-
-/** Fine classes leave room in a byte for special codes and missing. */
-const mostFineEdges = 199;
 
 export interface ClassColumn {
   readonly defined: DefinedCharacteristic;
@@ -71,7 +69,7 @@ export const classColumn: Task<ClassColumn, ClassedColumn | { readonly unusable:
       return { unusable: 'No development row has a value.' };
     const { bins: automatic, constraints } = classFine(counts.fine, asked);
     // Cuts of earlier edits lie where they lay: the fine classes are split there, after the automatic bins have been found without them.
-    const more = carriedEdges(counts.fine, earlier).slice(0, Math.max(0, mostFineEdges - counts.fine.edges.length));
+    const more = carriedEdges(counts.fine, earlier).slice(0, Math.max(0, mostFineEdges(defined.special.length) - counts.fine.edges.length));
     const { fine, outOfTime, slotOf } =
       more.length > 0 ? splitFineClasses(defined, source, data, counted, tallied, counts.fine, more) : counts;
     const { bins, steps } = carryEdits(fine, automatic, earlier);

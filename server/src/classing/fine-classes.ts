@@ -21,6 +21,9 @@ export interface DefinedCharacteristic {
 /** A byte holds 250 codes; special codes and missing need theirs. */
 export const mostCategories = 240;
 
+/** Most cuts of fine classes beside so many special codes: the classes between and around them, the codes and missing share the 250 codes. */
+export const mostFineEdges = (special: number): number => 248 - special;
+
 export class TooManyCategories extends Error {
   constructor(readonly categories: number) {
     super(

@@ -1,4 +1,5 @@
 import { AskedConstraints } from '@tallystone/contracts/binnings/bins';
+import type { EarlierEdit } from '@tallystone/numeric/bench';
 import { Generator } from '@tallystone/numeric/random/generator';
 import { describe, expect, it } from 'vitest';
 import { automaticEdges, automaticGroups } from '../replay/classing';
@@ -110,5 +111,30 @@ describe.each([
     expect(bins.map((group) => [...group].sort())).toEqual(
       Array.from({ length: groups }, (_, group) => names.filter((_, index) => groupOf[index] === group).sort()),
     );
+  });
+});
+
+describe('fine classes as many as the form allows', () => {
+  it('leave room for cuts that lie inside one of them', () => {
+    const random = new Generator(7);
+    const values = Array.from({ length: ROWS }, () => String(Math.round(random.uniform() * 1e6)));
+    const outcome = Uint8Array.from(values, (value) => (random.uniform() < 0.2 + Number(value) / 2e6 ? GOOD : BAD));
+    const counted = { rows: ROWS, partition: new Uint8Array(ROWS).fill(DEVELOPMENT), outcome, weights: null };
+    const asked = AskedConstraints.parse({ fineClasses: 200, mostBins: 5 });
+    const column = sourceOf({ income: values }).column('income') as SourceColumn;
+    const defined = { column: 'income', kind: 'numeric' as const, special: [{ label: 'none', values: [-999] }] };
+    const classed = (earlier: EarlierEdit[]) => {
+      const made = classColumn({ defined, column, data: { ...data, missing: [...data.missing] }, counted, constraints: asked, earlier, months: null }, control);
+      if (made instanceof Promise || 'unusable' in made) throw new Error('It can be classed');
+      return made;
+    };
+    const { fine, automatic } = classed([]);
+    expect(fine.edges).toHaveLength(199);
+    if (automatic.kind !== 'numeric') throw new Error('It is numeric');
+    const before = automatic;
+    const after = { ...before, edges: [...before.edges, 123_456.5].sort((a, b) => a - b) };
+    const carried = classed([{ kind: 'cut added', before, after, special: ['none'] }]);
+    expect(carried.fine.edges).toHaveLength(200);
+    expect(carried.carried).toMatchObject([{ kept: true, what: 'Cut added at 123456.5' }]);
   });
 });

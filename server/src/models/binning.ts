@@ -1,6 +1,6 @@
 import type { AskedConstraints, Bins, Constraints, Fine, SlotCounts } from '@tallystone/contracts/binnings/bins';
 import type { EditKind, EditReason } from '@tallystone/contracts/binnings/edits';
-import type { Warning, ivReadings, trends } from '@tallystone/contracts/binnings/schema';
+import type { NotHere, Warning, ivReadings, trends } from '@tallystone/contracts/binnings/schema';
 import type { BinnedCharacteristic } from '@tallystone/contracts/specification/types';
 import {
   type CreationOptional,
@@ -22,6 +22,8 @@ export class Binning extends Model<InferAttributes<Binning>, InferCreationAttrib
   declare runId: CreationOptional<string | null>;
   /** The earlier binning whose edits were carried over. */
   declare fromBinningId: CreationOptional<string | null>;
+  /** What the earlier binning decided about columns that are not classed here. */
+  declare notHere: CreationOptional<NotHere[]>;
   declare readyAt: CreationOptional<Date | null>;
   declare createdAt: CreationOptional<Date>;
   declare createdBy: string;
@@ -100,6 +102,7 @@ export function defineBinning(sequelize: Sequelize): void {
       barred: DataTypes.JSONB,
       runId: DataTypes.UUID,
       fromBinningId: DataTypes.UUID,
+      notHere: DataTypes.JSONB,
       readyAt: DataTypes.DATE,
       createdAt: DataTypes.DATE,
       createdBy: DataTypes.UUID,

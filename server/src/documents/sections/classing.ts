@@ -1,6 +1,7 @@
 import type { Characteristic } from '@tallystone/contracts/specification/types';
 import type { ResultCharacteristic } from '@tallystone/contracts/result/types';
 import { Ladder, logOdds } from '../charts/log-odds-ladder';
+import { notMonotone } from '../../replay/not-monotone';
 import type { ClassedCharacteristic, DocumentInput } from '../input';
 import { counted, fixed, percent, plural, rate, significant, timeText, whole, woe } from '../number-texts';
 import type { Writer } from '../page/writer';
@@ -76,7 +77,7 @@ export function writeClassing(writer: Writer): void {
   for (const entry of characteristics) {
     if (entry.bins.length > 0) writeBins(writer, entry, classed.get(entry.column) ?? null);
   }
-  writer.authorTexts(8, []);
+  writer.authorTexts(8, notMonotone(specification, result).length > 0 ? ['Trends that are not monotone'] : []);
 }
 
 function madeHow(characteristic: Characteristic | undefined, classed: ClassedCharacteristic | undefined): string {

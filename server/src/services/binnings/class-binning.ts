@@ -2,11 +2,13 @@ import { randomUUID } from 'node:crypto';
 import type { Sequelize, Transaction } from 'sequelize';
 import type { RunContext } from '../../jobs/handler';
 import { Binning, BinningCharacteristic } from '../../models/binning';
+import type { NotHere } from '@tallystone/contracts/binnings/schema';
+import type { ColumnRole } from '@tallystone/contracts/samples/columns';
 import { permittedOn } from '../permissions/permitted';
 import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
 import { findDefinition, loadPrepared } from '../samples/definitions';
-import { splitColumns } from './barred';
+import { type Barred, splitColumns } from './barred';
 import { type EarlierCharacteristic, readEarlier, storeCarried } from './carry-over';
 import { classCharacteristics } from './class-characteristics';
 import { loadRowMonths, storeMonths } from './months';
@@ -15,6 +17,8 @@ type Classed = Awaited<ReturnType<typeof classCharacteristics>>;
 export interface ClassedBinning extends Classed {
   readonly binning: Binning;
   readonly earlier: ReadonlyMap<string, EarlierCharacteristic>;
+  /** Of the sample's columns. */
+  readonly roles: ReadonlyMap<string, ColumnRole>;
 }
 
 /** Classes every characteristic that a binning takes. Nothing is stored before the last one is classed. */
@@ -44,7 +48,8 @@ export async function classBinning(
     },
     { signal, onDone: (done) => progress('Classing characteristics', done / taken.length) },
   );
-  return { binning, earlier, ...classed };
+  const roles = new Map(definition.content.columns.map(({ column, role }) => [column, role]));
+  return { binning, earlier, roles, ...classed };
 }
 
 /** Writes the bins, once, in the transaction that ends the run. */
@@ -52,7 +57,7 @@ export async function storeClassing(
   sequelize: Sequelize,
   tx: Transaction,
   run: { readonly personId: string },
-  { binning, earlier, classed, unusable }: ClassedBinning,
+  { binning, earlier, roles, classed, unusable }: ClassedBinning,
 ): Promise<{ binningId: string; characteristics: number }> {
   const binningId = binning.id;
   const entered = classed.map((one) => ({ ...one, id: randomUUID() }));
@@ -98,8 +103,10 @@ export async function storeClassing(
     { transaction: tx },
   );
   for (const { id, months } of entered) await storeMonths(sequelize, tx, id, months);
+  const barred = [...binning.barred, ...unusable];
+  const notHere = decisionsNotHere(earlier, new Set(entered.map(({ column }) => column)), barred, roles);
   await Binning.update(
-    { readyAt: new Date(), barred: [...binning.barred, ...unusable] },
+    { readyAt: new Date(), barred, notHere },
     { where: { id: binningId }, transaction: tx },
   );
   const person = await actorOf(run.personId, tx);
@@ -111,9 +118,29 @@ export async function storeClassing(
     modelId: binning.modelId,
     after: { characteristics: classed.length },
   });
+  for (const { why, ...detail } of notHere)
+    await appendRecord(tx, { actor: person, action: 'binning.not-carried', entity: 'binning', entityId: binningId, modelId: binning.modelId, detail, reason: why });
   for (const { id, column, carried } of entered) {
     const before = earlier.get(column);
     if (before) await storeCarried(tx, person, { id, modelId: binning.modelId, column }, before, carried);
   }
   return { binningId, characteristics: classed.length };
+}
+
+/** What the earlier binning decided about columns that this one does not class: said, because it has no place here. */
+function decisionsNotHere(
+  earlier: ReadonlyMap<string, EarlierCharacteristic>,
+  here: ReadonlySet<string>,
+  barred: readonly Barred[],
+  roles: ReadonlyMap<string, ColumnRole>,
+): NotHere[] {
+  const decided = [...earlier].sort(([a], [b]) => (a < b ? -1 : 1));
+  return decided.flatMap(([column, { stored, included, leftOutReason }]) => {
+    if (here.has(column) || (stored.length === 0 && included)) return [];
+    const role = roles.get(column);
+    const why =
+      barred.find((one) => one.column === column)?.reason ??
+      (role === undefined ? 'The sample has no such column.' : `In this sample it has the role “${role}”.`);
+    return [{ column, edits: stored.length, leftOut: included ? null : leftOutReason, why }];
+  });
 }

@@ -1,5 +1,5 @@
 import type { AskedConstraints } from '@tallystone/contracts/binnings/bins';
-import type { BinningState } from '@tallystone/contracts/binnings/schema';
+import type { BinningState, NotHere } from '@tallystone/contracts/binnings/schema';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
 import type { BinningStanding } from '../../policies/binnings';
@@ -23,7 +23,7 @@ export interface FoundBinning extends BinningStanding {
   readonly included: number;
   readonly edits: number;
   readonly editsWithoutReason: number;
-  readonly from: { readonly id: string; readonly name: string; readonly carried: number; readonly notCarried: number } | null;
+  readonly from: { readonly id: string; readonly name: string; readonly carried: number; readonly notCarried: number; readonly notHere: NotHere[] } | null;
   readonly createdBy: string;
   readonly createdAt: Date;
 }
@@ -38,7 +38,8 @@ const select = `
               WHEN r.state = 'cancelled' THEN 'cancelled' ELSE 'failed' END AS state,
          CASE WHEN b.ready_at IS NULL THEN r.problem ->> 'message' END AS problem,
          c.characteristics, c.included, e.edits, e."editsWithoutReason",
-         CASE WHEN f.id IS NOT NULL THEN json_build_object('id', f.id, 'name', f.name, 'carried', k.carried, 'notCarried', k.not_carried) END AS "from",
+         CASE WHEN f.id IS NOT NULL THEN json_build_object('id', f.id, 'name', f.name, 'carried', k.carried,
+           'notCarried', k.not_carried + (SELECT coalesce(sum((n ->> 'edits')::int), 0)::int FROM jsonb_array_elements(b.not_here) n), 'notHere', b.not_here) END AS "from",
          ARRAY(SELECT person_id::text FROM model_members WHERE model_id = b.model_id) AS "memberIds",
          ${tombstoneOf('d.sample_id')} AS erased
     FROM binnings b

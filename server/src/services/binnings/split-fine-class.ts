@@ -4,13 +4,12 @@ import { inTransaction } from '../../database/transaction';
 import { BinningCharacteristic } from '../../models/binning';
 import { conflict, invalidField } from '../../problems/problem';
 import { openSample } from '../../storage/columnStore';
+import { mostFineEdges } from '../../classing/fine-classes';
 import { runInThread } from '../../threads/run-in-thread';
 import { findDefinition, loadPrepared } from '../samples/definitions';
 import { shared } from './class-characteristics';
 import { type OnBench, findOnBench } from './find-characteristic';
 import { loadRowMonths, storeMonths } from './months';
-
-const mostEdges = 199;
 
 /**
  * Splits a fine class at a value, from the stored column, so that a cut can lie exactly there. Bins and revision stay as they are: the same
@@ -37,7 +36,7 @@ export async function splitFineClass(sequelize: Sequelize, found: OnBench, edge:
   let { fine } = characteristic;
   // Somebody else may split the same characteristic meanwhile: then the count is made again on what they left.
   while (!fine.edges.includes(edge)) {
-    if (fine.edges.length >= mostEdges)
+    if (fine.edges.length >= mostFineEdges(fine.special.length))
       throw conflict('too-many-fine-classes', `There are ${fine.edges.length + 1} fine classes, which is the most there can be.`);
     const split = await runInThread('binning.split', {
       defined: { column: characteristic.column, kind: 'numeric', special: defined.special },

@@ -78,6 +78,7 @@ const textPlaces: Record<VersionTextKey, { section: number; topic: string }> = {
   sourcesSuitability: { section: 6, topic: 'Suitability of the sources' },
   penaltyReason: { section: 9, topic: 'Why this penalty' },
   businessSense: { section: 10, topic: 'Business sense of each characteristic' },
+  trendExceptions: { section: 8, topic: 'Trends that are not monotone' },
   signExceptions: { section: 10, topic: 'Sign exceptions' },
   performanceInterpretation: { section: 11, topic: 'Interpretation' },
   limitations: { section: 11, topic: 'Limitations' },

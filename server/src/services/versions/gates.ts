@@ -5,6 +5,7 @@ import type { Specification } from '@tallystone/contracts/specification/types';
 import type { Gate, GateItem, VersionTextKey, VersionTexts } from '@tallystone/contracts/versions/schema';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
+import { notMonotone } from '../../replay/not-monotone';
 import { editsWithoutReason } from '../binnings/characteristics-of';
 import { permittedOn } from '../permissions/permitted';
 import { findDefinition } from '../samples/definitions';
@@ -74,6 +75,7 @@ async function submitItems(sequelize: Sequelize, { version, specification, resul
   );
   const kept = result.characteristics.filter((entry) => entry.coefficient !== 0);
   const untold = kept.filter(({ column }) => !specification.reasons.texts[column]?.trim());
+  const turning = notMonotone(specification, result);
   const against = kept.filter((entry) => (entry.coefficient ?? 0) < 0);
   return [
     {
@@ -102,6 +104,16 @@ async function submitItems(sequelize: Sequelize, { version, specification, resul
       holds: barred.length === 0,
       detail: barred.length === 0 ? permittedDetail(specification) : barred.map(({ column }) => barredWords(column)).join(' '),
       path: `${model}/fit/${version.fitId}`,
+    },
+    {
+      code: 'trends-justified',
+      label: 'Trends that are not monotone are justified',
+      holds: turning.length === 0 || (texts.trendExceptions ?? '').trim().length > 0,
+      detail:
+        turning.length === 0
+          ? 'Along every numeric characteristic kept, WOE only rises or only falls.'
+          : `WOE rises and falls along: ${turning.join(', ')}. Justify it in the text on trends that are not monotone, or class anew.`,
+      path: `${model}/version/${version.id}`,
     },
     {
       code: 'signs-justified',

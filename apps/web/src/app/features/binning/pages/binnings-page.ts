@@ -1,6 +1,6 @@
 import { ChangeDetectionStrategy, Component, computed, effect, inject, input, signal } from '@angular/core';
 import { FormControl, FormGroup, ReactiveFormsModule, Validators } from '@angular/forms';
-import { takeUntilDestroyed } from '@angular/core/rxjs-interop';
+import { takeUntilDestroyed, toSignal } from '@angular/core/rxjs-interop';
 import { MatButtonModule } from '@angular/material/button';
 import { MatFormFieldModule } from '@angular/material/form-field';
 import { MatInputModule } from '@angular/material/input';
@@ -86,6 +86,9 @@ export class BinningsPage {
       validators: [Validators.required, Validators.maxLength(120), Validators.pattern(/\S/)],
     }),
   });
+  private readonly fromBinningId = toSignal(this.form.controls.fromBinningId.valueChanges, { initialValue: null });
+  /** The binning that is started from. */
+  protected readonly earlierName = computed(() => this.ready().find(({ id }) => id === this.fromBinningId())?.name ?? null);
   protected readonly constraints = constraintsForm();
   private key = newIdempotencyKey();
 

@@ -82,7 +82,8 @@ export class CharacteristicsPage {
   protected readonly all = computed(() => (this.list.hasValue() ? this.list.value().characteristics : null));
   protected readonly rows = computed(() => filtered(this.all() ?? [], this.part(), this.search() ?? ''));
   protected readonly finding = computed(() => (this.list.hasValue() ? this.list.value().finding : null));
-  protected readonly notCarried = computed(() => (this.binning.hasValue() ? (this.binning.value().from?.notCarried ?? 0) : 0));
+  /** Edits not carried over that a characteristic of this binning shows. */
+  protected readonly notCarriedHere = computed(() => (this.all() ?? []).reduce((sum, { notCarried }) => sum + notCarried, 0));
   protected readonly carriedWords = computed(() => {
     const from = this.binning.hasValue() ? this.binning.value().from : null;
     if (!from) return null;
@@ -90,6 +91,14 @@ export class CharacteristicsPage {
     return from.notCarried === 0
       ? `${kept}; none is lost.`
       : `${kept}; ${from.notCarried} ${from.notCarried === 1 ? 'makes' : 'make'} no sense on this sample.`;
+  });
+  /** Decisions about columns that are not classed here, in words. */
+  protected readonly notHere = computed(() => {
+    const from = this.binning.hasValue() ? this.binning.value().from : null;
+    return (from?.notHere ?? []).map(({ column, edits, leftOut, why }) => ({
+      column,
+      words: `${[edits > 0 ? plural(edits, 'edit') : '', leftOut === null ? '' : `left out: ${leftOut}`].filter(Boolean).join('; ')}. ${why}`,
+    }));
   });
   protected readonly picked = computed(() => (this.all() ?? []).filter(({ id }) => this.chosen().has(id)));
   protected readonly pickedWords = computed(() => `${plural(this.picked().length, 'characteristic')} chosen`);

@@ -7,6 +7,7 @@ export const textSections: readonly { readonly key: VersionTextKey; readonly tit
   { key: 'exclusionsRationale', title: 'Rationale of the exclusions', section: 4, asks: 'Why each rule takes rows out, and that only facts known at application do.' },
   { key: 'outcomeJustification', title: 'Justification of the outcome', section: 5, asks: 'Why good, bad and indeterminate are defined as they are, and the window.' },
   { key: 'sourcesSuitability', title: 'Suitability of the sources', section: 6, asks: 'Where the data come from and why they stand for future applicants.' },
+  { key: 'trendExceptions', title: 'Trends that are not monotone', section: 8, asks: 'Why risk may rise and fall along the values of a characteristic, where it does.' },
   { key: 'penaltyReason', title: 'Why this penalty', section: 9, asks: 'Why this point of the path, against the two rules.' },
   { key: 'businessSense', title: 'Business sense of each characteristic', section: 10, asks: 'Why each characteristic kept should tell risk.' },
   { key: 'signExceptions', title: 'Sign exceptions', section: 10, asks: 'Why a coefficient may run against WOE, where one does.' },
