@@ -5,6 +5,10 @@ import { binningCharacteristics, editsWithoutReason } from '../../server/src/ser
 import { benchOf, characteristicsOf } from '../support/binned';
 import { type BinningWorld, numeric, recordOf, sent, startBinningWorld } from '../support/binning-world';
 import type { IntakeServer, Visitor } from '../support/intake';
+import { Constraints } from '@tallystone/contracts/binnings/bins';
+import type { Transaction } from 'sequelize';
+import { inTransaction } from '../../server/src/database/transaction';
+import { reclassInRun } from '../../server/src/services/binnings/reclass';
 
 let world: BinningWorld;
 let server: IntakeServer;
@@ -312,6 +316,52 @@ describe('several characteristics at once', () => {
       trendBy: 'cross-validation',
     });
     expect(stale.body.problems.map(({ where }: { where: { column: string } }) => where.column)).toEqual(['age', 'utilisation']);
+  });
+
+  it('classes any number of them anew in a run, which gives the same bins and stores nothing where one was changed meanwhile', async () => {
+    const all = (await characteristicsOf(modeller, binning.id)).characteristics.map(({ id, revision }) => ({ id, revision }));
+    const many = Array.from({ length: 11 }, (_, index) => all[index % all.length]);
+    const atOnce = await modeller.post(`/api/binnings/${binning.id}/reclassings`).send({ characteristics: many, constraints }).expect(422);
+    expect(atOnce.body.problems[0]).toMatchObject({ code: 'too-many-at-once' });
+
+    const start = (key: string, characteristics: object[], more: object = {}) =>
+      modeller.post(`/api/binnings/${binning.id}/reclassing-runs`).set('Idempotency-Key', key).send({ characteristics, constraints, reason: 'Fewer bins', ...more });
+    const wanted = { characteristics: await chosen('age', 'utilisation'), constraints, reason: 'Fewer bins' };
+    const direct = await modeller.post(`/api/binnings/${binning.id}/reclassings`).send(wanted).expect(200);
+    const before = await benchOf(modeller, binning.id, 'age');
+    // Edited by hand again, so that there is something to class away.
+    const bins = numeric(before.detail);
+    const edit = sent(bins, moveCut(before.detail.fine, bins, 0, edgeBeside(before.detail.fine, bins, 0, 1)!), { code: 'round number', text: '' });
+    await modeller.put(before.path).set('If-Match', before.etag).send({ bins: edit.after, edits: [edit] }).expect(200);
+    await start('reclass-silently', await chosen('age'), { reason: '' }).expect(422);
+    const stale = await start('reclass-stale', wanted.characteristics).expect(412);
+    expect(stale.body.problems).toMatchObject([{ where: { column: 'age' } }, { where: { column: 'utilisation' } }]);
+    const started = await start('reclass-now', await chosen('age', 'utilisation')).expect(202);
+    const run = await modeller.ended(started.body.runId as string);
+    expect(run).toMatchObject({ state: 'succeeded', kind: 'binning.reclass', result: { characteristics: 2 } });
+    const after = await benchOf(modeller, binning.id, 'age');
+    expect(after.detail).toMatchObject({ edits: 0, current: before.detail.current });
+    const listed = await characteristicsOf(modeller, binning.id);
+    expect(listed.characteristics[0].informationValue).toBe(direct.body.characteristics[0].informationValue);
+    expect((await recordOf(world, after.detail.id))[0]).toMatchObject({ action: 'binning.reclassed', actorName: 'marian', reason: 'Fewer bins' });
+
+    // Changed after the run was started: it stores nothing and says which.
+    const outdated = await chosen('age', 'utilisation');
+    const { etag, path, detail } = await benchOf(modeller, binning.id, 'utilisation');
+    const own = numeric(detail);
+    const moved = sent(own, moveCut(detail.fine, own, 0, edgeBeside(detail.fine, own, 0, 1)!), { code: 'round number', text: '' });
+    await modeller.put(path).set('If-Match', etag).send({ bins: moved.after, edits: [moved] }).expect(200);
+    const inside = {
+      context: server.context,
+      run: { personId: modeller.personId },
+      signal: new AbortController().signal,
+      progress: () => undefined,
+      finish: (work: (tx: Transaction) => Promise<unknown>) => inTransaction(server.context.sequelize, work),
+    } as unknown as Parameters<typeof reclassInRun>[1];
+    const asked = { binningId: binning.id, characteristics: outdated, constraints: Constraints.parse({ ...constraints, fineClasses: 100 }), reason: 'Late' };
+    await expect(reclassInRun(asked, inside)).rejects.toMatchObject({ status: 412, problems: [{ where: { column: 'utilisation' } }] });
+    expect((await benchOf(modeller, binning.id, 'utilisation')).detail).toMatchObject({ edits: 1, current: moved.after });
+    expect((await chosen('age'))[0].revision).toBe(outdated[0].revision);
   });
 
   it('leaves out with a reason, takes in again, and fits see what is included', async () => {

@@ -11,6 +11,7 @@ import {
   NewBinning,
   NewFineEdge,
   Reclass,
+  ReclassingRun,
   SaveBins,
   SetInclusion,
   ofBinning,
@@ -58,6 +59,15 @@ export const reclassCharacteristics = defineEndpoint({
   params: ofBinning,
   body: Reclass,
   response: CharacteristicList,
+});
+export const startReclassing = defineEndpoint({
+  method: 'POST',
+  path: `${binning}/reclassing-runs`,
+  summary: 'Class any number of characteristics anew under other constraints (Idempotency-Key); the run that does it',
+  params: ofBinning,
+  body: Reclass,
+  response: ReclassingRun,
+  status: 202,
 });
 export const setInclusion = defineEndpoint({
   method: 'POST',

@@ -245,3 +245,7 @@ export const CorrelationResult = z.object({ binningId: z.uuid(), characteristics
 
 /** Result of the run "complete a binning" (Run.result): characteristics that lacked a figure. */
 export const CompletionResult = z.object({ binningId: z.uuid(), characteristics: z.int() });
+
+export const ReclassingRun = z.object({ runId: z.uuid() }).meta({ id: 'BinningReclassingRun' });
+/** Result of the run that classes anew (Run.result). */
+export const ReclassingResult = z.object({ binningId: z.uuid(), characteristics: z.int() });

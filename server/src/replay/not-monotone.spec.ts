@@ -1,4 +1,4 @@
-import type { Result, ResultCharacteristic } from '@tallystone/contracts/result/types';
+import type { ResultCharacteristic } from '@tallystone/contracts/result/types';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import { describe, expect, it } from 'vitest';
 import { notMonotone } from './not-monotone';
@@ -13,7 +13,7 @@ const entry = (woe: readonly number[], coefficient: number | null = 0.8): Omit<R
 const found = (of: Omit<ResultCharacteristic, 'column'>, edges: number[], more: object = {}): string[] =>
   notMonotone(
     { characteristics: [{ column: 'age', kind: 'numeric', edges, coding: 'woe', ...more }] } as unknown as Specification,
-    { characteristics: [{ column: 'age', ...of }] } as Pick<Result, 'characteristics'>,
+    { characteristics: [{ column: 'age', ...of }] },
   );
 
 describe('characteristics whose WOE is not monotone', () => {

@@ -148,8 +148,8 @@ export function describeErasing(open: () => Erasing): void {
       expect({ route, status, code: body.code, detail: body.detail }).toEqual({ route, status: 409, code: 'rows-erased', detail: expect.stringMatching(words) });
       refused.push(route);
     }
-    // Sample 10, binning 5, fit 2, version 2, out-of-time 1, protected columns 1.
-    expect(refused).toHaveLength(21);
+    // Sample 10, binning 6, fit 2, version 2, out-of-time 1, protected columns 1.
+    expect(refused).toHaveLength(22);
 
     const { modelId, definitionId, binningId, fitId, secondFitId } = world;
     const inference = { ...settings, name: 'Parcelling', declined: { method: 'parcelling', bands: 10, uplift: 1.5, reason: 'as an example' } };

@@ -8,6 +8,7 @@ export const binningRows: readonly AccessRow[] = [
   readsModel(`GET ${binning}`),
   readsModel(`GET ${binning}/characteristics`),
   developsModel(`POST ${binning}/reclassings`),
+  developsModel(`POST ${binning}/reclassing-runs`),
   developsModel(`POST ${binning}/inclusions`),
   readsModel(`GET ${binning}/characteristics/:characteristicId`),
   developsModel(`PUT ${binning}/characteristics/:characteristicId`),

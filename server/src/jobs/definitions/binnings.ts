@@ -1,4 +1,4 @@
-import { ClassingResult, CompletionResult, CorrelationResult } from '@tallystone/contracts/binnings/schema';
+import { ClassingResult, CompletionResult, CorrelationResult, Reclass, ReclassingResult } from '@tallystone/contracts/binnings/schema';
 import { z } from 'zod';
 import { defineJob } from './job';
 
@@ -27,4 +27,12 @@ export const completeBinningJob = defineJob({
   readsRows: true,
   payload: z.strictObject({ binningId: z.uuid() }),
   result: CompletionResult,
+});
+
+/** Classes chosen characteristics of a binning anew, from their fine classes. */
+export const reclassBinningJob = defineJob({
+  kind: 'binning.reclass',
+  queue: 'long',
+  payload: Reclass.extend({ binningId: z.uuid() }),
+  result: ReclassingResult,
 });

@@ -5,7 +5,8 @@ import {
   storeCorrelations,
 } from '../../services/binnings/correlate-binning';
 import { completeBinning as completeCharacteristicsOf } from '../../services/binnings/complete-binning';
-import { classBinningJob, completeBinningJob, correlateBinningJob } from '../definitions/binnings';
+import { reclassInRun } from '../../services/binnings/reclass';
+import { classBinningJob, completeBinningJob, correlateBinningJob, reclassBinningJob } from '../definitions/binnings';
 import { handle } from '../handler';
 
 /** Nothing is stored before the last characteristic is classed, so an attempt that ends early leaves nothing behind. */
@@ -34,3 +35,5 @@ export const completeBinning = handle(completeBinningJob, {
     await run.finish(() => Promise.resolve(result));
   },
 });
+
+export const reclassBinning = handle(reclassBinningJob, { work: reclassInRun });

@@ -1,10 +1,10 @@
 import { freezeVersion, replicateVersion, studyVersionStability } from './versions';
 import type { Handler } from '../handler';
-import { classBinning, completeBinning, correlateBinning } from './binnings';
+import { classBinning, completeBinning, correlateBinning, reclassBinning } from './binnings';
 import { makeDocument } from './documents';
 import { fitPenaltyPath } from './fits';
 import { verifyRecord } from './record';
 import { confirmSample, readSample, reportQuality } from './samples';
 
 /** Everything a worker can do. An entity adds its handlers here. */
-export const handlers: readonly Handler[] = [verifyRecord, classBinning, correlateBinning, completeBinning, readSample, confirmSample, reportQuality, fitPenaltyPath, freezeVersion, replicateVersion, studyVersionStability, makeDocument];
+export const handlers: readonly Handler[] = [verifyRecord, classBinning, correlateBinning, completeBinning, reclassBinning, readSample, confirmSample, reportQuality, fitPenaltyPath, freezeVersion, replicateVersion, studyVersionStability, makeDocument];

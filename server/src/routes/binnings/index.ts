@@ -13,9 +13,10 @@ import {
   setInclusion as setInclusionEndpoint,
   splitFineClass as splitEndpoint,
   startBinning as startEndpoint,
+  startReclassing as startReclassingEndpoint,
 } from '@tallystone/contracts/binnings/endpoints';
 import { canEditBinning, canListBinnings, canReadBinning, canStartBinning } from '../../policies/binnings';
-import { reclassCharacteristics, setInclusion } from '../../services/binnings/change-several';
+import { setInclusion } from '../../services/binnings/change-several';
 import { allEdits, allEditsOfBinning, presentEdit, presentHistoric } from '../../services/binnings/edits';
 import { startCorrelation } from '../../services/binnings/correlate-binning';
 import { presentCorrelations } from '../../services/binnings/correlations';
@@ -24,6 +25,7 @@ import { findOnBench } from '../../services/binnings/find-characteristic';
 import { presentBinning, presentBinningSummary, presentCharacteristics, presentDetail } from '../../services/binnings/present';
 import { completeIfOld } from '../../services/binnings/complete-binning';
 import { presentMonths } from '../../services/binnings/months';
+import { reclassCharacteristics, startReclassing } from '../../services/binnings/reclass';
 import { saveBins } from '../../services/binnings/save-bins';
 import { splitFineClass } from '../../services/binnings/split-fine-class';
 import { startBinning } from '../../services/binnings/start-binning';
@@ -78,6 +80,15 @@ export const binningRoutes: readonly Route[] = [
       await reclassCharacteristics(context.sequelize, tx, person, subject, body);
       return presentCharacteristics(context.sequelize, subject, tx);
     },
+  }),
+  defineRoute(startReclassingEndpoint, {
+    access: 'signed-in',
+    idempotent: true,
+    find: ({ context, params, tx }) => findBinning(context.sequelize, params.binningId, tx),
+    authorise: ({ person, subject }) => canEditBinning(person, subject),
+    act: async ({ context, tx, person, subject, body, requestId }) => ({
+      runId: await startReclassing(context, tx, { ...body, person, binning: subject, requestId }),
+    }),
   }),
   defineRoute(setInclusionEndpoint, {
     access: 'signed-in',

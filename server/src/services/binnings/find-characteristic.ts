@@ -117,6 +117,16 @@ export async function lockCharacteristics(
     [binningId, ids],
     tx,
   );
+  return findCharacteristics(sequelize, binningId, ids, tx);
+}
+
+/** Whole characteristics of a binning by their ids, in its order; those that are not there are left out. */
+export function findCharacteristics(
+  sequelize: Sequelize,
+  binningId: string,
+  ids: readonly string[],
+  tx: Transaction | null = null,
+): Promise<FoundCharacteristic[]> {
   return rows(
     sequelize,
     `SELECT ${whole} FROM binning_characteristics c JOIN people p ON p.id = c.changed_by
