@@ -135,7 +135,6 @@ describe('the data dictionary of a sample', () => {
       ['no-such-column', { line: 2, column: 'column' }],
       ['other-kind', { line: 3, column: 'kind' }],
       ['no-such-role', { line: 3, column: 'role' }],
-      ['no-number', { line: 4, column: 'code' }],
       ['contradiction', { line: 5, column: 'role' }],
       ['no-meaning', { line: 5, column: 'meaning' }],
       ['role-twice', { line: 6, column: 'role' }],

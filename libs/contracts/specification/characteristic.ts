@@ -79,7 +79,7 @@ const numeric = checked<NumericCharacteristic>(
     coding: z.enum(['woe', 'indicator']).default('woe'),
     edges: z.array(finite),
     closed: z.enum(['left', 'right']).default('left'),
-    special: special(finite).default([]),
+    special: special(alternative<number | string>((value) => (typeof value === 'string' ? z.string().min(1) : finite))).default([]),
     missing: wordOrBin(['own', 'refuse']).default('own'),
     classing: classing.default({ made: 'by hand' }),
   }),
@@ -89,6 +89,10 @@ const numeric = checked<NumericCharacteristic>(
         report(['edges', index], 'not-ascending', `Edge ${edge} is not above the edge before it, ${value.edges[index - 1]}.`);
       }
     });
+    for (const code of value.special.flatMap((entry) => entry.values)) {
+      if (typeof code === 'string' && code.trim() !== '' && Number.isFinite(Number(code)))
+        report(['special'], 'special-is-number', `The special value ${JSON.stringify(code)} is a number: give it as one, without quotes.`);
+    }
     checkBins(value, value.edges.length + 1, 'edges', report);
   },
 );

@@ -153,7 +153,8 @@ export interface NumericCharacteristic extends CharacteristicSettings {
   /** Cuts, strictly ascending. k cuts make k + 1 bins. */
   edges: number[];
   closed: 'left' | 'right';
-  special: SpecialValue<number>[];
+  /** A text is a code that is no number in the file ("NTC"). */
+  special: SpecialValue<number | string>[];
   missing: 'own' | 'refuse' | number;
   classing: Classing;
 }

@@ -1,5 +1,5 @@
 import type { Fine, SlotCounts } from '@tallystone/contracts/binnings/bins';
-import type { BinnedCharacteristic, DataReading, NumericCharacteristic } from '@tallystone/contracts/specification/types';
+import type { BinnedCharacteristic, DataReading } from '@tallystone/contracts/specification/types';
 import { fineEdgesOfCounts } from '@tallystone/numeric/binning/fine-classes';
 import { slotCount } from '@tallystone/numeric/bench';
 import { codeCharacteristics } from '../replay/coding';
@@ -95,8 +95,7 @@ export function fineEntry(
   const base = { column: defined.column, penaltyMultiplier: 1, lower: null, upper: null, coding: 'woe', missing: 'own' } as const;
   const special = defined.special.map(({ label, values }) => ({ label, values: [...values], bin: 'own' as const }));
   if (defined.kind === 'numeric') {
-    const numbers = special as NumericCharacteristic['special'];
-    return { ...base, kind: 'numeric', edges: [...edges], closed: 'left', special: numbers, classing: { made: 'by hand' } };
+    return { ...base, kind: 'numeric', edges: [...edges], closed: 'left', special, classing: { made: 'by hand' } };
   }
   const texts = special.map((code) => ({ ...code, values: code.values.map(String) }));
   return {
@@ -245,7 +244,7 @@ function knownValues(
 ): { values: number[]; rows: number[] } {
   const each = eachText(column);
   const numbers = new Columns({ rows: column.texts.length, column: () => each }, data).numbers(defined.column);
-  const special = new Set(defined.special.flatMap(({ values }) => values.map(Number)));
+  const special = new Set<number | string>(defined.special.flatMap(({ values }) => values));
   const values: number[] = [];
   const rows: number[] = [];
   for (let text = 0; numbers && text < column.texts.length; text++) {

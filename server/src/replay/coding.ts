@@ -92,6 +92,11 @@ function codeNumeric(
       entry.values.map((value) => [value === 0 ? 0 : value, special[index]] as const),
     ),
   );
+  for (const code of specialBin.keys()) {
+    if (typeof code === 'number' || !columns.isNumber(code)) continue;
+    const message = `"${characteristic.column}": the special code ${JSON.stringify(code)} is a number as the file is read. State it as one.`;
+    problems.push({ code: 'special-is-number', message, where: { column: characteristic.column } });
+  }
   const { edges, closed } = characteristic;
   const binOfValue =
     specialBin.size === 0
@@ -103,8 +108,12 @@ function codeNumeric(
     const judge = (row: number): number => {
       const value = view.number(row);
       if (!Number.isNaN(value)) return binOfValue(value);
-      if (!view.missing(row)) faults.value(view.text(row));
-      else if (missing === null) faults.missingValue();
+      if (!view.missing(row)) {
+        const text = view.text(row);
+        const bin = specialBin.get(text);
+        if (bin !== undefined) return bin;
+        faults.value(text);
+      } else if (missing === null) faults.missingValue();
       else return missing;
       return NO_BIN;
     };

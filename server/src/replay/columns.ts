@@ -36,6 +36,11 @@ export class Columns {
     return this.missingTexts.has(text);
   }
 
+  /** Whether a text of a numeric column is a number, as the file is read. */
+  isNumber(text: string): boolean {
+    return !Number.isNaN(this.reader.read(text));
+  }
+
   raw(name: string): SourceColumn | null {
     const column = this.source.column(name);
     if (column !== undefined) return column;

@@ -301,6 +301,26 @@ describe('bin codes', () => {
     expect(codes({ column: 'x', kind: 'numeric', edges: [25, 37], special, closed: 'right' })).toEqual([0, 0, 4, 3, 3, 1, 4, 2]);
   });
 
+  it('take codes in words among numbers, to the letter, from texts and beside a column of numbers', () => {
+    const words = [{ label: 'none', values: [-999, 'NTC'], bin: 'own' }, { label: 'thin file', values: ['thin'], bin: 0 }];
+    const characteristic = { column: 'x', kind: 'numeric', edges: [25, 37], special: words };
+    const x = ['25', 'NTC', '', '-999', 'thin', '37', 'NA', 'NTC'];
+    expect(codes(characteristic, sourceOf({ ...values, x }))).toEqual([1, 3, 4, 3, 0, 2, 4, 3]);
+    const numbers: ColumnSource = {
+      rows: 8,
+      column: (name) =>
+        name === 'x'
+          ? { kind: 'numbers', values: Float64Array.of(25, NaN, NaN, -999, NaN, 37, NaN, NaN), exceptions: new Map([[1, 'NTC'], [4, 'thin'], [6, 'NA'], [7, 'NTC']]) }
+          : sourceOf(values).column(name),
+    }; // prettier-ignore
+    expect(codes(characteristic, numbers)).toEqual([1, 3, 4, 3, 0, 2, 4, 3]);
+    // Any other word is a problem, in small letters too; and so is a code that is a number as this file is read.
+    expect(problemsOf(() => codes(characteristic, sourceOf({ ...values, x: x.map((text) => text.replace('NTC', 'ntc')) })))).toMatchObject([{ code: 'not-a-number' }]);
+    const french = { ...characteristic, special: [{ label: 'none', values: ['1 000'], bin: 'own' }] };
+    const spec = specificationOf({ characteristics: [french], data: { sha256: null, delimiter: ',', encoding: 'utf-8', decimal: '.', thousands: ' ', trim: true, missing: ['', 'NA'] } });
+    expect(problemsOf(() => codeCharacteristics(spec, sourceOf(values), prepare(spec, sourceOf(values))))).toMatchObject([{ code: 'special-is-number' }]);
+  });
+
   it('let special, missing and unseen join a bin', () => {
     expect(codes({ column: 'x', kind: 'numeric', edges: [25, 37], special: [{ ...special[0], bin: 2 }], missing: 0 })).toEqual([
       1, 0, 0, 2, 2, 2, 0, 2,

@@ -88,6 +88,7 @@ function fromProfile(profile: ColumnProfile, defined: DefinedColumn): RaisedFlag
   const settled = profile.specialSuspects.every(({ value }) => named.has(value) || named.has(String(Number(value))));
   return profile.flags
     .filter(({ code }) => code !== 'possible-leakage' && !(code === 'special-code-suspected' && settled))
+    .filter(({ code, values }) => code !== 'unreadable-numbers' || !values?.length || !values.every((text) => named.has(text)))
     .map((flag) => ({ column: profile.column, ...flag }));
 }
 

@@ -51,7 +51,7 @@ export function readValues(contents: readonly Uint8Array[], rows: number, readin
     if (missing.has(text)) return { state: MISSING, number: NaN };
     if (needed !== 'numbers') return { state: specials.get(text) ?? VALUE, number: NaN };
     const number = reader.read(text);
-    if (Number.isNaN(number)) return { state: UNREADABLE, number };
+    if (Number.isNaN(number)) return { state: specials.get(text) ?? UNREADABLE, number };
     const special = specials.get(number);
     return special === undefined ? { state: VALUE, number } : { state: special, number: NaN };
   };

@@ -11,6 +11,7 @@ import type {
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
 import type { Exclusion, GroupsBy, OutcomeDefinition, Partition } from '@tallystone/contracts/specification/types';
 import { thin } from '../../profiling/kind';
+import { type NumberReader, numberReader } from '../../reading/index';
 
 export interface DefinedSample {
   readonly sha256: string;
@@ -37,7 +38,7 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
   // Kept as keyed hashes from the confirmation on: no rule can rest on their values.
   const identifiers = new Set(draft.columns.filter(({ role }) => role === 'identifier').map(({ column }) => column));
 
-  checkColumns(draft, profiles, say);
+  checkColumns(draft, profiles, numberReader(sample.reading), say);
   const outcome = holder('outcome');
   if (!outcome)
     say('no-outcome', 'No column has the role of the outcome. Choose the one that says how the loan went.', {
@@ -85,7 +86,7 @@ function withoutDefault({ dateOrder, ...reading }: ReadingChoices): ReadingChoic
 
 type Say = (code: string, message: string, where: ProblemItem['where']) => void;
 
-function checkColumns(draft: DraftContent, profiles: ReadonlyMap<string, ColumnProfile>, say: Say): void {
+function checkColumns(draft: DraftContent, profiles: ReadonlyMap<string, ColumnProfile>, reader: NumberReader, say: Say): void {
   const seen = new Set<string>();
   for (const entry of draft.columns) {
     const { column } = entry;
@@ -94,7 +95,7 @@ function checkColumns(draft: DraftContent, profiles: ReadonlyMap<string, ColumnP
     seen.add(column);
     const profile = profiles.get(column);
     if (!profile) say('no-such-column', `The file has no column ${column}.`, where);
-    else checkColumn(entry, profile, say);
+    else checkColumn(entry, profile, reader, say);
   }
   const forgotten = [...profiles.keys()].filter((column) => !seen.has(column));
   if (forgotten.length > 0)
@@ -115,12 +116,17 @@ function checkColumns(draft: DraftContent, profiles: ReadonlyMap<string, ColumnP
 
 const ofValues: readonly ColumnRole[] = ['characteristic', 'weight', 'incumbent score'];
 
-function checkColumn(entry: DefinedColumn, profile: ColumnProfile, say: Say): void {
+function checkColumn(entry: DefinedColumn, profile: ColumnProfile, reader: NumberReader, say: Say): void {
   const { column, kind, role } = entry;
   const where = { section: 'columns', column };
-  const unreadable = profile.flags.find(({ code }) => code === 'unreadable-numbers');
+  const texts = new Set(entry.special.flatMap(({ values }) => values.filter((value) => typeof value === 'string')));
+  const unreadable = profile.flags.find(
+    ({ code, values }) => code === 'unreadable-numbers' && !(values?.length && values.every((text) => texts.has(text))),
+  );
+  // Numbers among which codes in words stand so often that reading takes them for categories.
+  const numbersAmongCodes = texts.size > 0 && profile.flags.some(({ code }) => code === 'numbers-as-text');
   if (ofValues.includes(role) && kind === 'numeric') {
-    if (profile.kind !== 'numeric')
+    if (profile.kind !== 'numeric' && !(numbersAmongCodes && role === 'characteristic'))
       say(
         'not-numeric',
         `${column} holds no numbers as the file was read. Treat it as categorical, or read the file with other choices.`,
@@ -129,7 +135,7 @@ function checkColumn(entry: DefinedColumn, profile: ColumnProfile, say: Say): vo
     else if (unreadable)
       say(
         'unreadable-numbers',
-        `${column}: ${unreadable.finding} Read the file again with these as missing tokens (the column’s own part offers it in one step), treat the column as categorical, or do not use it.`,
+        `${column}: ${unreadable.finding} Name them as special codes, read the file again with these as missing tokens (the column’s own part offers both in one step), treat the column as categorical, or do not use it.`,
         where,
       );
   }
@@ -167,16 +173,16 @@ function checkColumn(entry: DefinedColumn, profile: ColumnProfile, say: Say): vo
     );
   }
   if (role === 'characteristic' && profile.distinct === 0) say('all-missing', `${column} is missing in every row.`, where);
-  checkSpecials(entry, say);
+  checkSpecials(entry, reader, say);
 }
 
-function checkSpecials({ column, kind, special }: DefinedColumn, say: Say): void {
+function checkSpecials({ column, kind, special }: DefinedColumn, reader: NumberReader, say: Say): void {
   const seen = new Set<string>();
   for (const { label, values } of special) {
     for (const value of values) {
       const where = { section: 'columns', column, value };
-      if (kind === 'numeric' && typeof value !== 'number')
-        say('special-not-numeric', `${column}: the special code ${JSON.stringify(value)} is no number.`, where);
+      if (kind === 'numeric' && typeof value === 'string' && !Number.isNaN(reader.read(value)))
+        say('special-is-number', `${column}: the special code ${JSON.stringify(value)} is a number. Give it as one.`, where);
       if (kind !== 'numeric' && typeof value !== 'string')
         say('special-not-text', `${column}: the special code ${value} is to be given as text.`, where);
       if (seen.has(String(value)))

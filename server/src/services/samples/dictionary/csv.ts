@@ -152,6 +152,9 @@ function columnFrom(lines: readonly Line[], column: DefinedColumn, has: (heading
   return { ...column, role: role ?? column.role, special };
 }
 
+/** As numbers are written in a dictionary, whatever the signs of the sample; a code that is none is kept as the text that it is. */
+const plainNumber = /^-?\d+(\.\d+)?$/;
+
 /** Codes of one meaning are one entry, as on the page. */
 function codesFrom(lines: readonly Line[], { kind }: DefinedColumn, say: Say): DefinedColumn['special'] {
   const codes = new Map<string, (string | number)[]>();
@@ -166,10 +169,9 @@ function codesFrom(lines: readonly Line[], { kind }: DefinedColumn, say: Say): D
     if (meaning === '') say('no-meaning', `say what ${code} means.`, line, 'meaning');
     else if (meaning.length > 200) say('too-long', 'a meaning has at most 200 characters.', line, 'meaning');
     if (kind === 'date') say('no-codes-here', 'a column of dates has no special codes.', line, 'code');
-    if (kind === 'numeric' && !Number.isFinite(Number(code))) say('no-number', `"${code}" is no number.`, line, 'code');
     if (seen.has(code)) say('code-twice', `the code ${code} stands there twice.`, line, 'code');
     seen.add(code);
-    codes.set(meaning, [...(codes.get(meaning) ?? []), kind === 'numeric' ? Number(code) : code]);
+    codes.set(meaning, [...(codes.get(meaning) ?? []), kind === 'numeric' && plainNumber.test(code) ? Number(code) : code]);
   }
   return [...codes].map(([label, values]) => ({ label, values }));
 }
