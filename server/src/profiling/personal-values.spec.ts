@@ -44,6 +44,18 @@ describe('personal data in values', () => {
     ['a National Insurance number', 'AB123456C', 'National Insurance numbers'],
     ['one in pairs', 'NI no. AB 12 34 56 C', 'National Insurance numbers'],
     ['a Social Security number', '123-45-6789', 'US Social Security numbers'],
+    // Examples of the issuing authorities, or of their documentation; from memory.
+    ['a Spanish DNI', '12345678Z', 'Spanish identity numbers'],
+    ['a NIE within a text', 'holder X-1234567-L, renewed', 'Spanish identity numbers'],
+    ['an Italian tax code', 'RSSMRA85T10A562S', 'Italian tax codes'],
+    ['a PESEL', '44051401359', 'Polish identity numbers'],
+    ['a German tax number', '86 095 742 719', 'German tax numbers'],
+    ['a French number with its key', '2 55 08 14 168 025 38', 'French social security numbers'],
+    ['a Swedish number', '811218-9876', 'Swedish identity numbers'],
+    ['a Swiss number', '756.9217.0769.85', 'Swiss social security numbers'],
+    ['a Brazilian number', '529.982.247-25', 'Brazilian tax numbers'],
+    ['a Canadian number', 'SIN 046-454-286', 'Canadian social insurance numbers'],
+    ['an Indian number', '9999 4105 7058', 'Indian identity numbers'],
     // Of the numbers that Ofcom sets aside for drama.
     ['a telephone number', '+44 7700 900123', 'telephone numbers'],
     ['one in one piece', '+447700900123', 'telephone numbers'],
@@ -79,6 +91,8 @@ describe('personal data in values', () => {
     ['areas that are not given out', ['000-12-3456', '666-12-3456', '912-34-5678', '123-00-4567', '123-45-0000']],
     ['numbers without their plus sign', ['07700 900123', '447700900123']],
     ['wrong check digits', ['GB28NWBK60161331926819', '4111111111111112']],
+    ['national numbers with another last character', ['12345678A', 'RSSMRA85T10A562T', '44051401358', '86095742710', '255081416802539', '811218-9875']],
+    ['those with separators', ['756.9217.0769.84', '529.982.247-26', '111.111.111-11', '046-454-287', '9999 4105 7059']],
   ])('%s are not', (_what, texts) => {
     expect(found(...texts)).toEqual([]);
   });

@@ -1,3 +1,5 @@
+import { nationalNumbers } from './national-numbers';
+
 /**
  * Values that look like personal data wherever they stand in a text, over all rows of a column. What is found is a warning that somebody
  * answers: a format can fit by chance. Each kind names the standard whose form, and check digits where it has them, are looked at.
@@ -12,7 +14,7 @@ export interface PersonalValuesFound {
   readonly asNumbers: boolean;
 }
 
-interface Kind {
+export interface PersonalKind {
   /** In the plural, as a finding says it. */
   readonly kind: string;
   readonly standard: string;
@@ -25,7 +27,8 @@ interface Kind {
 /** With check digits some of any numbers fit by chance, 1 in 10 or 1 in 97: a column is one of them where at least so many that have the form fit. */
 const leastHolding = 0.5;
 
-const kinds: readonly Kind[] = [
+const kinds: readonly PersonalKind[] = [
+  ...nationalNumbers,
   {
     kind: 'e-mail addresses',
     standard: 'RFC 5322, section 3.4.1',
@@ -70,8 +73,8 @@ const kinds: readonly Kind[] = [
 const shortest = 6;
 /** Digits that a text has at least, where it has no @. */
 const fewestDigits = 6;
-/** Digits of a payment card at least: nothing else is written in digits alone. */
-const cardDigits = 13;
+/** Digits that a text of digits alone has at least: those of national numbers and of payment cards. */
+const digitsAlone = 11;
 
 /**
  * Counts over the texts of a column, in any order.
@@ -120,7 +123,7 @@ function worthLooking(text: string): boolean {
     // A point or a comma, or the sign of an amount.
     else if (code !== 46 && code !== 44 && !(at === 0 && code === 45)) others++;
   }
-  return digits >= (others === 0 ? cardDigits : fewestDigits);
+  return digits >= (others === 0 ? digitsAlone : fewestDigits);
 }
 
 const digitsOf = (piece: string): string => piece.replace(/\D/g, '');
