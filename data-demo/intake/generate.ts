@@ -75,7 +75,7 @@ export function intakeFiles(): Record<string, Buffer> {
       ).join('')}`,
     ),
     'ok/formula-like-text.csv': column('remark', ['=1+1', '+44', '-note', '@sum', ' =1+1', 'plain']),
-    'ok/dangerous-headers.csv': utf8(plain.replace('home', '__proto__').replace('monthly_income', 'constructor')),
+    'not-ok/dangerous-headers.csv': utf8(plain.replace('home', '__proto__').replace('monthly_income', 'constructor')),
 
     'not-ok/empty.csv': Buffer.alloc(0),
     'not-ok/header-only.csv': utf8(header),

@@ -90,6 +90,7 @@ describe('files that are refused, with everything that is wrong', () => {
     ['unclosed-quote', { code: 'unclosed-quote', where: { line: 8 } }],
     ['duplicate-headers', { code: 'duplicate-header', where: { position: 4, column: 'home' } }],
     ['blank-header', { code: 'blank-header', where: { position: 4 } }],
+    ['dangerous-headers', { code: 'reserved-header', where: { position: 3, column: '__proto__' } }],
     ['nul-bytes', { code: 'nul-byte', where: { line: 6, position: 3 } }],
   ])('%s, when it is read', async (name, problem) => {
     const { run, path } = await read(`not-ok/${name}.csv`);

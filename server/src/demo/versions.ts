@@ -1,3 +1,4 @@
+import { reasonTextOf } from '@tallystone/contracts/scorecards/reason-text';
 import type { VersionTexts } from '@tallystone/contracts/versions/schema';
 import type { Context } from '../context';
 import { inTransaction } from '../database/transaction';
@@ -61,7 +62,7 @@ async function ensureScorecard(context: Context, fit: FoundFit, modeller: Actor)
     const loaded = await loadScorecard(context.sequelize, fit, tx);
     if (loaded.revision > 0) return;
     const own = Object.fromEntries(
-      loaded.kept.map(({ definition: { column }, label }) => [column, reasonTexts[column] ?? `Fewer points than others for: ${label.replaceAll('_', ' ')}`]),
+      loaded.kept.map(({ definition: { column }, label }) => [column, reasonTextOf(reasonTexts, column) || `Fewer points than others for: ${label.replaceAll('_', ' ')}`]),
     );
     await saveScorecard(tx, fit, modeller, loaded, { ...loaded.settings, cutOff: 470, reasons: { ...loaded.settings.reasons, texts: own } });
   });

@@ -20,6 +20,10 @@ interface Trace {
   entersAt: number;
 }
 
+/** Own entries alone: a column may be called as something that every object has. */
+const coefficientsAt = ({ coefficients }: ResultPathPoint, column: string): number[] =>
+  Object.hasOwn(coefficients, column) ? [coefficients[column]].flat() : [0];
+
 function traces(result: Result, label: (column: string) => string): Trace[] {
   const keptNow = result.path.reduce<ResultPathPoint | null>(
     (best, point) =>
@@ -28,13 +32,13 @@ function traces(result: Result, label: (column: string) => string): Trace[] {
   );
   return result.characteristics
     .map(({ column }) => {
-      const values = result.path.map((point) => [point.coefficients[column] ?? 0].flat());
+      const values = result.path.map((point) => coefficientsAt(point, column));
       const width = Math.max(1, ...values.map((entry) => entry.length));
       const entersAt = values.findIndex((entry) => entry.some((value) => value !== 0));
       return {
         column,
         label: label(column),
-        kept: [keptNow?.coefficients[column] ?? 0].flat().some((value) => value !== 0),
+        kept: keptNow !== null && coefficientsAt(keptNow, column).some((value) => value !== 0),
         lines: Array.from({ length: width }, (_, place) => values.map((entry) => entry[place] ?? 0)),
         entersAt: entersAt < 0 ? Infinity : entersAt,
       };

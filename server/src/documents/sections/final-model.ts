@@ -1,4 +1,5 @@
 import type { ResultCharacteristic } from '@tallystone/contracts/result/types';
+import { reasonTextOf } from '@tallystone/contracts/scorecards/reason-text';
 import { fixed, plural, significant, whole, woe } from '../number-texts';
 import { linearScale } from '../charts/plot';
 import type { Writer } from '../page/writer';
@@ -116,9 +117,9 @@ export function writeFinalModel(writer: Writer): void {
   writer.text(
     `For a declined applicant, the characteristics furthest below ${baseline}, largest unrounded loss first, ties in the order of the specification, only real losses, at most ${whole(reasons.most)}.`,
   );
-  const without = kept.filter((entry) => (reasonTexts[entry.column] ?? '') === '');
+  const without = kept.filter((entry) => reasonTextOf(reasonTexts, entry.column) === '');
   if (without.length > 0) writer.notEvidenced(`Reason text of ${without.map((entry) => writer.label(entry.column)).join(', ')}`);
-  const withText = kept.filter((entry) => (reasonTexts[entry.column] ?? '') !== '');
+  const withText = kept.filter((entry) => reasonTextOf(reasonTexts, entry.column) !== '');
   if (withText.length > 0) {
     writer.table('Reason texts', input.resultEvidence, {
       columns: [

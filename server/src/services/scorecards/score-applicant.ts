@@ -1,4 +1,5 @@
 import type { ProblemItem } from '@tallystone/contracts/problems/schema';
+import { reasonTextOf } from '@tallystone/contracts/scorecards/reason-text';
 import type { Applicant, ScoredApplicant } from '@tallystone/contracts/scorecards/schema';
 import { type Points, probabilityOfBad, roundAwayFromZero } from '@tallystone/numeric';
 import type { Sequelize } from 'sequelize';
@@ -51,7 +52,7 @@ export async function scoreApplicant(sequelize: Sequelize, fit: FoundFit, applic
     })),
     reasons: losses.slice(0, reasons.most).map(({ k, loss }) => {
       const { definition, label } = loaded.kept[k];
-      return { column: definition.column, text: reasons.texts[definition.column] || label, loss };
+      return { column: definition.column, text: reasonTextOf(reasons.texts, definition.column) || label, loss };
     }),
     caution: applicantCaution,
   };
@@ -61,7 +62,7 @@ function codesOf(loaded: LoadedScorecard, { fields }: Applicant): number[] {
   const known = new Set(loaded.kept.map(({ definition }) => definition.column));
   const strangers = Object.keys(fields).filter((column) => !known.has(column));
   const problems = strangers.map((column) => ({ code: 'unknown-column', message: `"${column}" is not scored by this scorecard.`, where: { field: column } }));
-  const texts = Object.fromEntries([...known].map((column) => [column, [(fields[column] ?? '').trim()]]));
+  const texts = Object.fromEntries([...known].map((column) => [column, [Object.hasOwn(fields, column) ? fields[column].trim() : '']]));
   try {
     const one = { rows: 1, partition: Uint8Array.of(DEVELOPMENT) };
     const coded = codeCharacteristics(loaded.scoring, loaded.kept.length === 0 ? { rows: 1, column: () => undefined } : sourceOf(texts), one);

@@ -1,6 +1,7 @@
 import { noLongerReplicable } from '@tallystone/contracts/samples/erased-words';
 import { barredWords, permissionLines } from '@tallystone/contracts/permissions/permission-words';
 import type { Result } from '@tallystone/contracts/result/types';
+import { reasonTextOf } from '@tallystone/contracts/scorecards/reason-text';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import type { Gate, GateItem, VersionTextKey, VersionTexts } from '@tallystone/contracts/versions/schema';
 import type { Sequelize, Transaction } from 'sequelize';
@@ -74,7 +75,7 @@ async function submitItems(sequelize: Sequelize, { version, specification, resul
     (column) => column.protected && !permitted.has(column.column) && specification.characteristics.some((entry) => entry.column === column.column),
   );
   const kept = result.characteristics.filter((entry) => entry.coefficient !== 0);
-  const untold = kept.filter(({ column }) => !specification.reasons.texts[column]?.trim());
+  const untold = kept.filter(({ column }) => reasonTextOf(specification.reasons.texts, column) === '');
   const turning = notMonotone(specification, result);
   const against = kept.filter((entry) => (entry.coefficient ?? 0) < 0);
   return [

@@ -42,7 +42,7 @@ import {
   scorecardDecision,
   scorecardFinding,
 } from '../ui/scorecard-view';
-import { fillSettings, holdToBands, settingsForm, settingsOf } from '../ui/settings-form';
+import { fillSettings, holdToBands, settingsForm, settingsOf, textKey } from '../ui/settings-form';
 
 /** The scorecard of a fit at its chosen penalty: scale, points, bands, cut-off, reasons, one applicant, and freezing. Which fit is in the URL. */
 @Component({
@@ -99,6 +99,7 @@ export class ScorecardPage {
   protected readonly run = this.runs.run(() => this.runId());
 
   protected readonly form = settingsForm();
+  protected readonly textKey = textKey;
   private readonly changed = toSignal(this.form.valueChanges);
   protected readonly scorecard = computed(() => this.tagged()?.value ?? null);
   protected readonly mayEdit = computed(() => this.scorecard()?.abilities.includes('edit') ?? false);

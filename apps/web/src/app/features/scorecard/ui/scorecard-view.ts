@@ -1,3 +1,4 @@
+import { reasonTextOf } from '@tallystone/contracts/scorecards/reason-text';
 import type { ScoreBand, Scorecard, ScorecardSettings } from '@tallystone/contracts/scorecards/schema';
 import { scaleToPoints } from '@tallystone/numeric/scaling/points';
 import { MINUS, fixed, metric, plural, points, share } from '../../../ui/numbers';
@@ -75,7 +76,7 @@ export function scaleReadings(scaling: ScorecardSettings['scaling']): { readonly
 /** Columns that an applicant would be told nothing about. */
 export function withoutReason(scorecard: Scorecard): string[] {
   const { texts } = scorecard.settings.reasons;
-  return scorecard.characteristics.filter(({ column }) => !texts[column]?.trim()).map(({ label }) => label);
+  return scorecard.characteristics.filter(({ column }) => reasonTextOf(texts, column) === '').map(({ label }) => label);
 }
 
 /**

@@ -1,6 +1,6 @@
 import { smallScorecard } from '../testing/scorecard';
 import { categoriesOf } from '../pages/applicant-form';
-import { fillSettings, holdToBands, settingsForm, settingsOf } from './settings-form';
+import { fillSettings, holdToBands, settingsForm, settingsOf, textKey } from './settings-form';
 
 const { settings } = smallScorecard;
 
@@ -28,8 +28,16 @@ describe('the settings form', () => {
   it('keeps texts of columns that are not kept, and drops what was emptied', () => {
     const form = settingsForm();
     fillSettings(form, settings, ['age']);
-    form.controls.texts.controls['age'].setValue('  ');
+    form.controls.texts.controls[textKey('age')].setValue('  ');
     expect(settingsOf(form, settings)?.reasons.texts).toEqual({ home: 'Kind of home' });
+  });
+
+  it('has a text of its own for a column that is called as something every object has', () => {
+    const form = settingsForm();
+    fillSettings(form, settings, ['constructor', 'toString']);
+    expect(settingsOf(form, settings)).toEqual(settings);
+    form.controls.texts.controls[textKey('constructor')].setValue('Kind of building');
+    expect(settingsOf(form, settings)?.reasons.texts).toEqual({ ...settings.reasons.texts, constructor: 'Kind of building' });
   });
 
   it('takes no scale out of bounds', () => {

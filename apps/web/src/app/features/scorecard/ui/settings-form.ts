@@ -1,4 +1,5 @@
 import { type AbstractControl, FormControl, FormGroup, FormRecord, type ValidationErrors, Validators } from '@angular/forms';
+import { reasonTextOf } from '@tallystone/contracts/scorecards/reason-text';
 import type { ScorecardSettings } from '@tallystone/contracts/scorecards/schema';
 import { readEdges } from './scorecard-view';
 
@@ -6,6 +7,9 @@ const number = (low: number, high: number) =>
   new FormControl<number | null>(null, { validators: [Validators.required, Validators.min(low), Validators.max(high)] });
 
 const rising = ({ value }: AbstractControl): ValidationErrors | null => (readEdges(value as string) === null ? { edges: true } : null);
+
+/** The key of a column's text among the controls: a group takes "constructor" for a control that it has, so no key is a bare name of a column. */
+export const textKey = (column: string): string => `text of ${column}`;
 
 /** The settings of a scorecard as a form; `settingsOf` reads it back. */
 export function settingsForm() {
@@ -37,10 +41,11 @@ export function fillSettings(form: SettingsForm, settings: ScorecardSettings, co
   const { scaling, bands, reasons, cutOff } = settings;
   const { texts } = form.controls;
   // Names of columns may hold dots, which a path of controls would take apart: the group is keyed, never addressed by path.
-  for (const name of Object.keys(texts.controls)) if (!columns.includes(name)) texts.removeControl(name, { emitEvent: false });
-  for (const column of columns) {
-    if (!(column in texts.controls)) {
-      texts.addControl(column, new FormControl('', { nonNullable: true, validators: [Validators.maxLength(500)] }), { emitEvent: false });
+  const keys = new Set(columns.map(textKey));
+  for (const key of Object.keys(texts.controls)) if (!keys.has(key)) texts.removeControl(key, { emitEvent: false });
+  for (const key of keys) {
+    if (!(key in texts.controls)) {
+      texts.addControl(key, new FormControl('', { nonNullable: true, validators: [Validators.maxLength(500)] }), { emitEvent: false });
     }
   }
   form.patchValue({
@@ -54,7 +59,7 @@ export function fillSettings(form: SettingsForm, settings: ScorecardSettings, co
     cutOff,
     baseline: reasons.baseline,
     most: reasons.most,
-    texts: Object.fromEntries(columns.map((column) => [column, reasons.texts[column] ?? ''])),
+    texts: Object.fromEntries(columns.map((column) => [textKey(column), reasonTextOf(reasons.texts, column)])),
   });
   holdToBands(form);
   form.markAsPristine();
@@ -69,7 +74,8 @@ export function settingsOf(form: SettingsForm, before: ScorecardSettings): Score
   if (pointsToDouble === null || baseScore === null || baseOdds === null || most === null) return null;
   if (value.bandsBy === 'edges' ? edges === null : quantiles === null) return null;
   const texts = { ...before.reasons.texts };
-  for (const [column, text] of Object.entries(value.texts)) {
+  for (const [key, text] of Object.entries(value.texts)) {
+    const column = key.slice(textKey('').length);
     if (text.trim()) texts[column] = text.trim();
     else delete texts[column];
   }
