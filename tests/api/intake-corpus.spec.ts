@@ -1,5 +1,6 @@
 import { readFileSync } from 'node:fs';
 import type { ProblemItem } from '@tallystone/contracts/problems/schema';
+import type { DraftCheck, DraftContent } from '@tallystone/contracts/samples/definition';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { IntakeServer, type Visitor } from '../support/intake';
 
@@ -124,6 +125,45 @@ describe('files that are held until somebody answers', () => {
         flags.some(({ code, finding }) => code === 'doubtful-dates' && finding.includes('day first or month first')),
       ),
     ).toBe(true);
+  });
+
+  it.each([
+    [
+      'negative-weights',
+      [
+        'weight has weights below zero in 10 rows, the smallest -1. Weights are zero or more: mend them in the file, or give the role to another column.',
+        'weight has weights that are no numbers in 10 rows: "NaN". Mend them in the file, or read it with other choices.',
+      ],
+    ],
+    ['zero-weights', ['The weights in "weight" are all zero.']],
+  ])('%s: no weights, with the count', async (name, messages) => {
+    // What stands for a missing value in a weight is missing; here NaN is to be no token, as in a file that nobody was asked about.
+    const lines = bytesOf(`not-ok/${name}.csv`).toString('utf8').trimEnd().split('\n');
+    // A sample without a characteristic would be held for that alone.
+    const csv = lines.map((line, row) => `${line},${row === 0 ? 'age' : 20 + row}\n`).join('');
+    const { path, run } = await modeller.sample(modelId, csv, { missing: [''] });
+    expect(run.state).toBe('succeeded');
+    const { body, headers } = await modeller.get(`${path}/draft`).expect(200);
+    const { content } = body as { content: DraftContent };
+    const columns = content.columns.map((column) =>
+      column.column === 'weight'
+        ? { ...column, role: 'weight', reason: null }
+        : column.column === 'age'
+          ? { ...column, role: 'characteristic', reason: null }
+          : column,
+    );
+    const saved = await modeller
+      .put(`${path}/draft`)
+      .set('If-Match', headers.etag)
+      .send({ ...content, columns })
+      .expect(200);
+    const { body: check } = await modeller.post(`${path}/draft/check`).expect(200);
+    const of = ({ problems }: { problems: ProblemItem[] }) =>
+      problems.filter(({ where }) => where.column === 'weight').map(({ message }) => message);
+    expect(of(check as DraftCheck)).toEqual(messages);
+    const refused = await modeller.post(`${path}/definitions`).send({ revision: saved.body.revision as number });
+    if (refused.status === 202) expect((await modeller.ended(refused.body.id as string)).problem?.message).toContain(messages[0]);
+    else expect([refused.status, of(refused.body as DraftCheck)]).toEqual([422, messages]);
   });
 
   it.each(['one-class-outcome', 'three-value-outcome', 'missing-outcome'])(

@@ -38,7 +38,10 @@ describe('characteristics called constructor, toString, valueOf and hasOwnProper
     };
     const saved = await modeller.put(`${path}/draft`).set('If-Match', headers.etag).send(content).expect(200);
     expect(saved.body.problems).toEqual([]);
-    const started = await modeller.post(`${path}/definitions`).send({ revision: saved.body.revision as number }).expect(202);
+    const started = await modeller
+      .post(`${path}/definitions`)
+      .send({ revision: saved.body.revision as number })
+      .expect(202);
     const { definitionId } = (await modeller.ended(started.body.id as string)).result as { definitionId: string };
     const binning = await classApplicants(modeller, modelId, definitionId);
     const settings = { lambda: { count: 20, smallestRatio: 0.01 }, folds: { count: 3, seed: 1, classing: 'once' } };
@@ -48,7 +51,10 @@ describe('characteristics called constructor, toString, valueOf and hasOwnProper
   }, 240_000);
 
   it('give an applicant the label where no text was written, and take fields that are left out as missing', async () => {
-    const { body } = await modeller.post(`/api/fits/${fitId}/scorecard/applicants`).send({ fields: { toString: '99' } }).expect(200);
+    const { body } = await modeller
+      .post(`/api/fits/${fitId}/scorecard/applicants`)
+      .send({ fields: { toString: '99' } })
+      .expect(200);
     expect((body as { points: { column: string }[] }).points.map(({ column }) => column).sort()).toContain('constructor');
     for (const { text } of (body as { reasons: { text: unknown }[] }).reasons) expect(typeof text).toBe('string');
   });

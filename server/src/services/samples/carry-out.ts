@@ -11,6 +11,7 @@ import { profilesOf } from './columns-of';
 import { define } from './define';
 import type { FoundSample } from './find-sample';
 import { problemItem } from './problem-item';
+import { weightFaultsOf } from './weight-faults';
 
 export type CarriedOut =
   | { readonly problems: ProblemItem[]; readonly content: null; readonly answer: null }
@@ -32,7 +33,8 @@ export async function carryOut(
     return refused([{ code: 'not-read', message: 'The file has not been read yet. Confirm how it is read first.', where: {} }]);
   }
   const profiles = await profilesOf(context.sequelize, sample.readingId);
-  const { content, problems } = define(draft, { sha256: sample.sha256, reading: sample.reading, profiles });
+  const weights = await weightFaultsOf(context.sequelize, sample, draft, profiles);
+  const { content, problems } = define(draft, { sha256: sample.sha256, reading: sample.reading, profiles, weights });
   if (!content) return refused(problems);
   const names = columnsOf(content);
   const source = await openSample(context.sequelize, sample.id, names);

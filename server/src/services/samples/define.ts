@@ -12,11 +12,14 @@ import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
 import type { Exclusion, GroupsBy, OutcomeDefinition, Partition } from '@tallystone/contracts/specification/types';
 import { thin } from '../../profiling/kind';
 import { type NumberReader, numberReader } from '../../reading/index';
+import { type WeightFaults, weightSentences } from './weight-faults';
 
 export interface DefinedSample {
   readonly sha256: string;
   readonly reading: ReadingChoices;
   readonly profiles: readonly ColumnProfile[];
+  /** What is wrong with the weights, counted on the rows; null where nothing is, or no column has the role. */
+  readonly weights: WeightFaults | null;
 }
 
 export interface Defined {
@@ -38,7 +41,7 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
   // Kept as keyed hashes from the confirmation on: no rule can rest on their values.
   const identifiers = new Set(draft.columns.filter(({ role }) => role === 'identifier').map(({ column }) => column));
 
-  checkColumns(draft, profiles, numberReader(sample.reading), say);
+  checkColumns(draft, profiles, { reader: numberReader(sample.reading), weights: sample.weights }, say);
   const outcome = holder('outcome');
   if (!outcome)
     say('no-outcome', 'No column has the role of the outcome. Choose the one that says how the loan went.', {
@@ -84,9 +87,15 @@ function withoutDefault({ dateOrder, ...reading }: ReadingChoices): ReadingChoic
   return dateOrder === undefined || dateOrder === 'year-month-day' ? reading : { ...reading, dateOrder };
 }
 
+/** What is known beside the profiles: how numbers are written, and what is wrong with the weights. */
+interface Known {
+  readonly reader: NumberReader;
+  readonly weights: WeightFaults | null;
+}
+
 type Say = (code: string, message: string, where: ProblemItem['where']) => void;
 
-function checkColumns(draft: DraftContent, profiles: ReadonlyMap<string, ColumnProfile>, reader: NumberReader, say: Say): void {
+function checkColumns(draft: DraftContent, profiles: ReadonlyMap<string, ColumnProfile>, known: Known, say: Say): void {
   const seen = new Set<string>();
   for (const entry of draft.columns) {
     const { column } = entry;
@@ -95,7 +104,7 @@ function checkColumns(draft: DraftContent, profiles: ReadonlyMap<string, ColumnP
     seen.add(column);
     const profile = profiles.get(column);
     if (!profile) say('no-such-column', `The file has no column ${column}.`, where);
-    else checkColumn(entry, profile, reader, say);
+    else checkColumn(entry, profile, known, say);
   }
   const forgotten = [...profiles.keys()].filter((column) => !seen.has(column));
   if (forgotten.length > 0)
@@ -114,9 +123,9 @@ function checkColumns(draft: DraftContent, profiles: ReadonlyMap<string, ColumnP
   }
 }
 
-const ofValues: readonly ColumnRole[] = ['characteristic', 'weight', 'incumbent score'];
+const ofValues: readonly ColumnRole[] = ['characteristic', 'incumbent score'];
 
-function checkColumn(entry: DefinedColumn, profile: ColumnProfile, reader: NumberReader, say: Say): void {
+function checkColumn(entry: DefinedColumn, profile: ColumnProfile, { reader, weights }: Known, say: Say): void {
   const { column, kind, role } = entry;
   const where = { section: 'columns', column };
   const texts = new Set(entry.special.flatMap(({ values }) => values.filter((value) => typeof value === 'string')));
@@ -141,22 +150,12 @@ function checkColumn(entry: DefinedColumn, profile: ColumnProfile, reader: Numbe
   }
   const mixed = profile.flags.find(({ code }) => code === 'mixed-numbers');
   if (role === 'characteristic' && mixed) say('mixed-numbers', `${column}: ${mixed.finding}`, where);
-  if (role === 'weight' || role === 'incumbent score') {
+  // A column of weights that holds anything else is told by its counts below.
+  if (role === 'incumbent score' || (role === 'weight' && (weights?.unreadable ?? 0) === 0)) {
     if (kind !== 'numeric') say('not-numeric', `A ${role} is numeric; ${column} is ${kind}.`, where);
   }
-  if (role === 'weight' && profile.numeric && profile.numeric.smallest < 0) {
-    say(
-      'negative-weight',
-      `${column} has weights below zero, the smallest ${profile.numeric.smallest}. Weights are zero or more.`,
-      where,
-    );
-  }
-  if (role === 'weight' && profile.missing > 0)
-    say(
-      'missing-weight',
-      `${column} is missing in ${thin(profile.missing)} rows. Every row needs a weight; zero is allowed.`,
-      where,
-    );
+  const faults = role === 'weight' && weights ? weightSentences(column, weights) : [];
+  for (const { code, message } of faults) say(code, message, where);
   if (role === 'application date' && profile.kind !== 'date')
     say(
       'not-a-date',

@@ -8,6 +8,7 @@ import { profilesOf } from './columns-of';
 import { covered } from './cover-counts';
 import { define } from './define';
 import type { FoundSample } from './find-sample';
+import { weightFaultsOf } from './weight-faults';
 
 export interface FoundDraft {
   readonly sample: FoundSample;
@@ -38,8 +39,10 @@ export async function findDraft(
 export async function presentDraft(context: Context, draft: FoundDraft, tx: Transaction | null = null): Promise<Draft> {
   const { sample } = draft;
   const profiles = sample.readingId === null ? [] : await profilesOf(context.sequelize, sample.readingId, tx);
-  const problems =
-    sample.reading === null ? [] : define(draft.content, { sha256: sample.sha256, reading: sample.reading, profiles }).problems;
+  const { sha256, reading } = sample;
+  // Once the rows are erased there is nothing to count, and nothing to confirm.
+  const weights = sample.erased ? null : await weightFaultsOf(context.sequelize, sample, draft.content, profiles);
+  const problems = reading === null ? [] : define(draft.content, { sha256, reading, profiles, weights }).problems;
   return {
     content: draft.content,
     revision: draft.revision,
