@@ -172,4 +172,33 @@ describe('the data dictionary of a sample', () => {
     // What is confirmed is carried, not what was only drafted afterwards: the code -998 is in no definition.
     expect(columns.find(({ column }) => column === 'utilisation')).toMatchObject({ role: 'characteristic', special: [{ label: 'no bureau record', values: [-999] }] });
   }); // prettier-ignore
+
+  it('takes words from a later sample that has them and no definition, beside roles from the one that is confirmed', async () => {
+    const csv = ['applied_on,utilisation,home,bad'];
+    for (let row = 0; row < 300; row++)
+      csv.push(`2026-0${1 + (row % 9)}-12,${row % 9 === 0 ? -999 : row},${['owner', 'rent'][row % 2]},${row % 5 === 0 ? 1 : 0}`);
+    const worded = await modeller.sample(modelId, `${csv.join('\n')}\n`);
+    const { headers } = await modeller.get(`${worded.path}/dictionary`).expect(200);
+    const entry = { column: 'home', label: 'Home, as stated', unit: '', description: '', treatments: [] };
+    await modeller.put(`${worded.path}/dictionary`).set('If-Match', headers.etag).send({ entries: [entry] }).expect(200);
+    const last = await modeller.sample(modelId, `${csv.join('\n')}\n2026-01-01,1,owner,0\n`);
+    const { body } = await modeller.get(`${last.path}/dictionary`).expect(200);
+    const { carried, entries } = body as Dictionary;
+    expect(entries).toEqual([entry]);
+    expect(carried).toMatchObject({ sampleId, wordsFrom: 'applicants.csv' });
+    expect((await draft(last.path)).columns.find(({ column }) => column === 'utilisation')?.special).toEqual([{ label: 'no bureau record', values: [-999] }]);
+  });
+
+  it('takes words alone where no earlier sample has a definition', async () => {
+    const other = await modeller.model('Words alone');
+    const csv = `a,bad\n${Array.from({ length: 60 }, (_, row) => `${row},${row % 3 === 0 ? 1 : 0}`).join('\n')}\n`;
+    const first = await modeller.sample(other, csv);
+    const { headers } = await modeller.get(`${first.path}/dictionary`).expect(200);
+    const entry = { column: 'a', label: 'Age', unit: 'years', description: '', treatments: [] };
+    await modeller.put(`${first.path}/dictionary`).set('If-Match', headers.etag).send({ entries: [entry] }).expect(200);
+    const second = await modeller.sample(other, `${csv}61,0\n`);
+    const { carried, entries } = (await modeller.get(`${second.path}/dictionary`).expect(200)).body as Dictionary;
+    expect(entries).toEqual([entry]);
+    expect(carried).toMatchObject({ columns: ['a'], wordsFrom: 'applicants.csv' });
+  });
 });

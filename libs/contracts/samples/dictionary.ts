@@ -22,8 +22,19 @@ export const CarriedDictionary = z.object({
   /** Columns of the same name and kind. */
   columns: z.array(z.string()),
   notCarried: z.array(z.object({ column: z.string(), why: z.string() })),
+  /** The file of a later sample that nobody has defined yet, where labels, units and descriptions are from that one. */
+  wordsFrom: z.string().nullable(),
 });
 export type CarriedDictionary = z.infer<typeof CarriedDictionary>;
+
+/** What became of the draft when the file was read again. */
+export const KeptDraft = z.object({
+  /** Columns that stayed as they were. */
+  columns: z.array(z.string()),
+  /** What could not stay, a column or a rule, with the reason. */
+  lost: z.array(z.object({ what: z.string(), why: z.string() })),
+});
+export type KeptDraft = z.infer<typeof KeptDraft>;
 
 export const Dictionary = z
   .object({
@@ -33,6 +44,8 @@ export const Dictionary = z
     savedAt: z.string().nullable(),
     savedBy: z.string().nullable(),
     carried: CarriedDictionary.nullable(),
+    /** Null unless the file was read again. */
+    readAgain: KeptDraft.nullable(),
     abilities: z.array(z.enum(['edit'])),
   })
   .meta({ id: 'SampleDictionary' });

@@ -5,7 +5,8 @@ import type { Transaction } from 'sequelize';
 import type { Context } from '../../context';
 import { rows } from '../../database/sql';
 import { proposeOutcome } from '../../profiling/guess-outcome';
-import { carryDictionary } from './dictionary/carry';
+import { carryDictionary, noteReadAgain } from './dictionary/carry';
+import { keepDraft } from './keep-draft';
 
 /** The draft that a person finds after reading: every suggestion filled in, nothing confirmed. */
 export function firstDraft(profiles: readonly ColumnProfile[]): DraftContent {
@@ -58,6 +59,7 @@ function byColumn(profile: ColumnProfile): DraftContent['partition'] {
   };
 }
 
+/** Stores the draft that a reading leaves: what an earlier sample says carried over on the first one, what was decided here kept on any later one. */
 export async function writeFirstDraft(
   context: Context,
   tx: Transaction,
@@ -65,7 +67,16 @@ export async function writeFirstDraft(
   profiles: readonly ColumnProfile[],
   personId: string,
 ): Promise<void> {
-  const content = await carryDictionary(context.sequelize, tx, sampleId, firstDraft(profiles), profiles);
+  const suggested = await carryDictionary(context.sequelize, tx, sampleId, firstDraft(profiles), profiles);
+  const [before] = await rows<{ content: DraftContent }>(
+    context.sequelize,
+    'SELECT content FROM sample_drafts WHERE sample_id = $1 FOR UPDATE',
+    [sampleId],
+    tx,
+  );
+  const again = before ? keepDraft(before.content, suggested, profiles) : null;
+  if (again) await noteReadAgain(context.sequelize, tx, sampleId, again.kept);
+  const content = again?.content ?? suggested;
   await rows(
     context.sequelize,
     `INSERT INTO sample_drafts (sample_id, content, saved_by) VALUES ($1, $2::jsonb, $3)

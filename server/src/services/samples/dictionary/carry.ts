@@ -1,6 +1,6 @@
 import { type ColumnProfile, singleRoles } from '@tallystone/contracts/samples/columns';
 import type { DefinedColumn, DraftContent, SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
-import type { CarriedDictionary, DictionaryEntry } from '@tallystone/contracts/samples/dictionary';
+import type { CarriedDictionary, DictionaryEntry, KeptDraft } from '@tallystone/contracts/samples/dictionary';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../../database/sql';
 
@@ -11,10 +11,15 @@ interface Earlier {
   readonly entries: DictionaryEntry[] | null;
 }
 
+/** A sample in which words were written, later than the latest with a definition: its roles are a draft, its words are not. */
+interface Worded extends Earlier {
+  readonly number: number;
+}
+
 /**
  * Takes over what the latest earlier sample of the model with a confirmed definition says of columns that have the same name and kind here:
- * role, protection and special codes into the draft, label, unit, description and treatments into the dictionary. What is not taken over is
- * kept with its reason, to be shown.
+ * role, protection and special codes into the draft, label, unit, description and treatments into the dictionary. Where a later sample has a
+ * dictionary and no definition yet, the words are from that one. What is not taken over is kept with its reason, to be shown.
  *
  * @returns the draft as it is to be stored
  */
@@ -25,9 +30,9 @@ export async function carryDictionary(
   draft: DraftContent,
   profiles: readonly ColumnProfile[],
 ): Promise<DraftContent> {
-  const [earlier] = await rows<Earlier>(
+  const [defined] = await rows<Worded>(
     sequelize,
-    `SELECT e.id AS "sampleId", e.file_name AS "fileName", d.content -> 'columns' AS columns, y.entries
+    `SELECT e.id AS "sampleId", e.number, e.file_name AS "fileName", d.content -> 'columns' AS columns, y.entries
        FROM samples s JOIN samples e ON e.model_id = s.model_id AND e.number < s.number
        JOIN LATERAL (SELECT content FROM sample_definitions WHERE sample_id = e.id ORDER BY number DESC LIMIT 1) d ON true
        LEFT JOIN sample_dictionaries y ON y.sample_id = e.id
@@ -35,8 +40,25 @@ export async function carryDictionary(
     [sampleId],
     tx,
   );
-  if (!earlier) return draft;
-  const { content, entries, carried } = takeOver(earlier, draft, profiles);
+  const [worded] = await rows<Worded>(
+    sequelize,
+    `SELECT e.id AS "sampleId", e.number, e.file_name AS "fileName", f.content -> 'columns' AS columns, y.entries
+       FROM samples s JOIN samples e ON e.model_id = s.model_id AND e.number < s.number
+       JOIN sample_drafts f ON f.sample_id = e.id
+       JOIN sample_dictionaries y ON y.sample_id = e.id AND y.saved_at IS NOT NULL
+      WHERE s.id = $1 ORDER BY e.number DESC LIMIT 1`,
+    [sampleId],
+    tx,
+  );
+  const later = worded && worded.number > (defined?.number ?? 0) ? worded : null;
+  const taken = defined ? takeOver(defined, draft, profiles) : null;
+  const words = later ? takeOver(later, draft, profiles) : null;
+  if (!taken && !words) return draft;
+  const content = taken?.content ?? draft;
+  const entries = words?.entries ?? taken?.entries ?? [];
+  const carried: CarriedDictionary | null = taken
+    ? { ...taken.carried, wordsFrom: later?.fileName ?? null }
+    : words && { ...words.carried, columns: words.entries.map(({ column }) => column), wordsFrom: later?.fileName ?? null };
   await rows(
     sequelize,
     `INSERT INTO sample_dictionaries (sample_id, entries, carried) VALUES ($1, $2::jsonb, $3::jsonb)
@@ -47,6 +69,19 @@ export async function carryDictionary(
     tx,
   );
   return content;
+}
+
+/** Keeps with the dictionary what became of the draft when the file was read again, beside what was carried over. */
+export async function noteReadAgain(sequelize: Sequelize, tx: Transaction, sampleId: string, readAgain: KeptDraft): Promise<void> {
+  await rows(
+    sequelize,
+    `INSERT INTO sample_dictionaries (sample_id, entries, carried) VALUES ($1, '[]'::jsonb, $2::jsonb)
+     ON CONFLICT (sample_id) DO UPDATE SET carried = coalesce(sample_dictionaries.carried, '{}'::jsonb) || excluded.carried,
+       revision = sample_dictionaries.revision + 1
+     RETURNING sample_id`,
+    [sampleId, JSON.stringify({ readAgain })],
+    tx,
+  );
 }
 
 /** What there is to carry, and what speaks against it. */
@@ -77,7 +112,7 @@ export function takeOver(
   return {
     content: { ...draft, columns },
     entries: (earlier.entries ?? []).filter(({ column }) => kept.has(column)),
-    carried: { sampleId: earlier.sampleId, fileName: earlier.fileName, columns: [...kept.keys()], notCarried },
+    carried: { sampleId: earlier.sampleId, fileName: earlier.fileName, columns: [...kept.keys()], notCarried, wordsFrom: null },
   };
 }
 

@@ -1,4 +1,4 @@
-import type { CarriedDictionary, ColumnLabels, Dictionary, DictionaryEntry } from '@tallystone/contracts/samples/dictionary';
+import type { CarriedDictionary, KeptDraft, ColumnLabels, Dictionary, DictionaryEntry } from '@tallystone/contracts/samples/dictionary';
 import { labelWords } from '@tallystone/contracts/samples/labels';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../../database/sql';
@@ -12,11 +12,12 @@ export interface FoundDictionary {
   readonly entries: DictionaryEntry[];
   readonly revision: number;
   readonly carried: CarriedDictionary | null;
+  readonly readAgain: KeptDraft | null;
   readonly savedAt: Date | null;
   readonly savedBy: string | null;
 }
 
-const nothing: Omit<FoundDictionary, 'sample'> = { entries: [], revision: 0, carried: null, savedAt: null, savedBy: null };
+const nothing: Omit<FoundDictionary, 'sample'> = { entries: [], revision: 0, carried: null, readAgain: null, savedAt: null, savedBy: null };
 
 /** The dictionary of a sample, empty where nothing was written yet; null without a sample. */
 export async function findDictionary(
@@ -27,7 +28,8 @@ export async function findDictionary(
   if (!sample) return null;
   const [found = nothing] = await rows<Omit<FoundDictionary, 'sample'>>(
     sequelize,
-    `SELECT d.entries, d.revision, d.carried, d.saved_at AS "savedAt", p.name AS "savedBy"
+    `SELECT d.entries, d.revision, d.carried -> 'readAgain' AS "readAgain", d.saved_at AS "savedAt", p.name AS "savedBy",
+            CASE WHEN d.carried ? 'sampleId' THEN '{"wordsFrom": null}'::jsonb || (d.carried - 'readAgain') END AS carried
        FROM sample_dictionaries d LEFT JOIN people p ON p.id = d.saved_by WHERE d.sample_id = $1`,
     [sample.id],
     tx,
@@ -41,6 +43,7 @@ export const presentDictionary = (dictionary: FoundDictionary, person: Actor): D
   savedAt: dictionary.savedAt?.toISOString() ?? null,
   savedBy: dictionary.savedBy,
   carried: dictionary.carried,
+  readAgain: dictionary.readAgain,
   abilities: canDefineSample(person, dictionary.sample).allowed ? ['edit'] : [],
 });
 

@@ -23,6 +23,7 @@ import { DictionaryStore } from '../data/dictionary-store';
 import { DraftStore } from '../data/draft-store';
 import { type ColumnProfile, columnsOf, oneSample } from '../data/samples';
 import { CarriedNote } from '../ui/carried-note';
+import { ReadAgainNote } from '../ui/read-again-note';
 import { ColumnEditor } from '../ui/column-editor';
 import { DictionaryEditor } from '../ui/dictionary-editor';
 import { flagsOf, mostFrequentOf, rangeOf } from '../ui/findings';
@@ -47,6 +48,7 @@ interface Row {
     RouterLink,
     MatButtonModule,
     CarriedNote,
+    ReadAgainNote,
     CellTemplate,
     ColumnEditor,
     DenseTable,
@@ -87,6 +89,9 @@ interface Row {
       }
       @if (words.dictionary()?.carried; as carried) {
         <ts-carried-note [carried]="carried" />
+      }
+      @if (words.dictionary()?.readAgain; as kept) {
+        <ts-read-again-note [kept]="kept" />
       }
       @if (draft.saveState() === 'stale') {
         <ts-save-state [state]="draft.saveState()" (theirs)="draft.reload()" (mine)="draft.keepMine()" />

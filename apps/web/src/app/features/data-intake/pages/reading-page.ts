@@ -201,7 +201,7 @@ export class ReadingPage {
     if (this.sample.hasValue() && this.sample.value().state === 'ready') {
       const answer = await this.ask.for({
         title: 'Read the file again?',
-        text: 'Columns, their quality and the draft of the definition are made anew under these choices. Roles and mappings set so far are suggested afresh.',
+        text: 'Columns and their quality are made anew under these choices. The draft of the definition stays as it is wherever its columns are still there and of the same kind; what cannot stay is told on the page of the columns. Definitions that were confirmed stay as they are.',
         accept: 'Read again',
       });
       if (!answer) return;

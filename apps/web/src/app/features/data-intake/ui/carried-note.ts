@@ -42,7 +42,11 @@ export class CarriedNote {
   readonly carried = input.required<CarriedDictionary>();
   protected readonly words = computed(
     () =>
-      `Roles, special codes and words of ${plural(this.carried().columns.length, 'column')} are carried over from ${this.carried().fileName}: same name and kind.`,
+      this.carried().wordsFrom === null
+        ? `Roles, special codes and words of ${plural(this.carried().columns.length, 'column')} are carried over from ${this.carried().fileName}: same name and kind.`
+        : this.carried().wordsFrom === this.carried().fileName
+          ? `Words of ${plural(this.carried().columns.length, 'column')} are carried over from ${this.carried().fileName}, which has no definition yet: same name and kind.`
+          : `Roles and special codes of ${plural(this.carried().columns.length, 'column')} are carried over from ${this.carried().fileName}, words from ${this.carried().wordsFrom}: same name and kind.`,
   );
   protected readonly rest = computed(() => `${plural(this.carried().notCarried.length, 'column')} not carried over`);
 }

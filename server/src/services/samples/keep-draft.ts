@@ -1,0 +1,186 @@
+import { type ColumnProfile, type ColumnRole, singleRoles } from '@tallystone/contracts/samples/columns';
+import type { DefinedColumn, DraftContent, DraftOutcome, ExclusionRule } from '@tallystone/contracts/samples/definition';
+import type { KeptDraft } from '@tallystone/contracts/samples/dictionary';
+
+type Lost = KeptDraft['lost'];
+const limits = ['below', 'atMost', 'above', 'atLeast'] as const;
+
+/**
+ * The draft of a sample whose file was read again: what was decided stays wherever its columns are still there and of a kind that fits, and the
+ * rest is suggested anew, each with its reason.
+ *
+ * @param before the draft as it was under the reading before
+ * @param suggested the draft that the new reading suggests
+ */
+export function keepDraft(
+  before: DraftContent,
+  suggested: DraftContent,
+  profiles: readonly ColumnProfile[],
+): { content: DraftContent; kept: KeptDraft } {
+  const lost: Lost = [];
+  const here = new Map(profiles.map((profile) => [profile.column, profile]));
+  const columns = keepColumns(before, suggested, here, lost);
+  const holder = (role: ColumnRole, list: readonly DefinedColumn[] = columns.list): string | undefined =>
+    list.find((column) => column.role === role)?.column;
+  /** The profile of the column that has this role now, where it is the one that had it before. */
+  const same = (role: ColumnRole): ColumnProfile | undefined => {
+    const name = holder(role);
+    return name !== undefined && name === holder(role, before.columns) ? here.get(name) : undefined;
+  };
+
+  const ofOutcome = same('outcome');
+  const outcome = ofOutcome ? keepOutcome(before.outcome, ofOutcome, here, lost) : suggested.outcome;
+  if (!ofOutcome && holder('outcome', before.columns) !== undefined)
+    lost.push({ what: 'Outcome', why: 'Its column is another one now.' });
+
+  const ofDecision = same('decision');
+  const named = before.declined?.values ?? [];
+  const still = ofDecision ? named.filter(isThere(ofDecision)) : [];
+  if (still.length < named.length) lost.push({ what: 'Declined', why: 'Values that stood for it are not there any more.' });
+
+  return {
+    content: {
+      columns: columns.list,
+      outcome,
+      declined: ofDecision ? (still.length > 0 ? { values: still } : null) : suggested.declined,
+      exclusions: before.exclusions.filter((rule) => fits(rule, here, lost)),
+      partition: keepPartition(before, suggested, columns.list, same('partition'), here, lost),
+    },
+    kept: { columns: columns.kept, lost },
+  };
+}
+
+function keepColumns(
+  before: DraftContent,
+  suggested: DraftContent,
+  here: ReadonlyMap<string, ColumnProfile>,
+  lost: Lost,
+): { list: DefinedColumn[]; kept: string[] } {
+  const known = new Map(before.columns.map((column) => [column.column, column]));
+  for (const { column } of before.columns)
+    if (!here.has(column)) lost.push({ what: column, why: 'The file has no such column under these choices.' });
+  const kept = new Map<string, DefinedColumn>();
+  for (const fresh of suggested.columns) {
+    const old = known.get(fresh.column);
+    const profile = here.get(fresh.column);
+    if (!old || !profile) continue;
+    const why = obstacle(old, profile);
+    if (why === null) kept.set(fresh.column, asNow(old, fresh, profile, lost));
+    else lost.push({ what: fresh.column, why });
+  }
+  // A role that only one column can have stays with the column that was given it.
+  const taken = new Set([...kept.values()].map(({ role }) => role).filter((role) => singleRoles.includes(role)));
+  const list = suggested.columns.map(
+    (fresh): DefinedColumn =>
+      kept.get(fresh.column) ??
+      (taken.has(fresh.role) ? { ...fresh, role: 'not used', reason: 'Another column has this role already.' } : fresh),
+  );
+  return { list, kept: [...kept.keys()] };
+}
+
+function obstacle(old: DefinedColumn, profile: ColumnProfile): string | null {
+  if (profile.hashed && !['identifier', 'group key', 'not used'].includes(old.role))
+    return 'It identifies people under these choices, and is kept as keyed hashes.';
+  const stop = profile.flags.find(({ weight }) => weight === 'stop');
+  if (stop && old.role !== 'not used' && old.role !== 'identifier')
+    return `It cannot be used under these choices: ${stop.finding}`;
+  if (old.kind === profile.kind || (old.kind === 'categorical' && profile.kind === 'numeric' && old.role !== 'not used'))
+    return null;
+  return `It is ${profile.kind} under these choices, and was ${old.kind}.`;
+}
+
+/** Texts that became numbers take their special codes with them where these are numbers too. */
+function asNow(old: DefinedColumn, fresh: DefinedColumn, profile: ColumnProfile, lost: Lost): DefinedColumn {
+  const kept = { ...old, protected: old.protected || fresh.protected };
+  if (old.kind === profile.kind) return kept;
+  const asNumber = (value: string | number): number[] => {
+    const number = typeof value === 'number' ? value : /^[+-]?\d+(\.\d+)?$/.test(value.trim()) ? Number(value) : NaN;
+    return Number.isNaN(number) ? [] : [number];
+  };
+  const special = old.special
+    .map(({ label, values }) => ({ label, values: values.flatMap(asNumber) }))
+    .filter(({ values }) => values.length > 0);
+  if (special.flatMap(({ values }) => values).length < old.special.flatMap(({ values }) => values).length)
+    lost.push({ what: old.column, why: 'It is numeric under these choices: special codes that are no numbers were left out.' });
+  return { ...kept, kind: profile.kind, special };
+}
+
+/** Whether a value still stands in the file; where the profile does not list all of them nobody can tell, and it is kept. */
+const isThere =
+  ({ valuesComplete, mostFrequent, missingTokens }: ColumnProfile) =>
+  (value: string): boolean =>
+    !valuesComplete || [...mostFrequent, ...missingTokens].some((entry) => entry.value === value);
+
+function keepOutcome(
+  { rule, ...values }: DraftOutcome,
+  profile: ColumnProfile,
+  here: ReadonlyMap<string, ColumnProfile>,
+  lost: Lost,
+): DraftOutcome {
+  const there = isThere(profile);
+  const kept = {
+    good: values.good.filter(there),
+    bad: values.bad.filter(there),
+    indeterminate: values.indeterminate.filter(there),
+    excluded: values.excluded.filter(there),
+  };
+  const gone = Object.values(values)
+    .flat()
+    .filter((value) => !there(value));
+  // Under a rule the lists do not count.
+  if (!rule && gone.length > 0)
+    lost.push({ what: 'Outcome', why: `${gone.map((value) => JSON.stringify(value)).join(', ')} is not there any more.` });
+  if (!rule) return kept;
+  if (profile.kind !== 'numeric') {
+    lost.push({ what: 'Outcome by rule', why: `${profile.column} holds no numbers under these choices.` });
+    return kept;
+  }
+  const { monthsOnBook } = rule;
+  if (monthsOnBook === null || here.get(monthsOnBook.column)?.kind === 'numeric') return { ...kept, rule };
+  lost.push({ what: 'Months on book', why: `${monthsOnBook.column} holds no numbers under these choices.` });
+  return { ...kept, rule: { ...rule, monthsOnBook: null } };
+}
+
+/** An exclusion is kept as a whole or not at all: without one of its tests it would take out other rows. */
+function fits(rule: ExclusionRule, here: ReadonlyMap<string, ColumnProfile>, lost: Lost): boolean {
+  const what = rule.reason.trim() === '' ? 'An exclusion' : `Exclusion “${rule.reason.trim()}”`;
+  for (const test of rule.tests) {
+    const profile = here.get(test.column);
+    const stated = limits.map((limit) => test[limit]).filter((value) => value !== undefined);
+    const why = !profile
+      ? `The file has no column ${test.column} under these choices.`
+      : stated.some((value) => (typeof value === 'number' ? profile.kind !== 'numeric' : profile.kind !== 'date'))
+        ? `${test.column} is ${profile.kind} under these choices, and cannot be compared with its limit.`
+        : null;
+    if (why === null) continue;
+    lost.push({ what, why });
+    return false;
+  }
+  return true;
+}
+
+function keepPartition(
+  { partition }: DraftContent,
+  suggested: DraftContent,
+  columns: readonly DefinedColumn[],
+  profile: ColumnProfile | undefined,
+  here: ReadonlyMap<string, ColumnProfile>,
+  lost: Lost,
+): DraftContent['partition'] {
+  if (partition.by === 'column') {
+    if (profile) {
+      const there = isThere(profile);
+      const { development, holdOut, outOfTime } = partition;
+      const kept = { development: development.filter(there), holdOut: holdOut.filter(there), outOfTime: outOfTime.filter(there) };
+      if (Object.values(kept).flat().length < [...development, ...holdOut, ...outOfTime].length)
+        lost.push({ what: 'Partition', why: 'Values that stood for a part are not there any more.' });
+      return { by: 'column', ...kept };
+    }
+    lost.push({ what: 'Partition', why: 'Its column is another one now.' });
+    return suggested.partition;
+  }
+  const date = columns.find(({ role }) => role === 'application date');
+  if (partition.outOfTime === null || (date && here.get(date.column)?.kind === 'date')) return partition;
+  lost.push({ what: 'Out-of-time', why: 'No column of application dates holds dates under these choices.' });
+  return { ...partition, outOfTime: null };
+}
