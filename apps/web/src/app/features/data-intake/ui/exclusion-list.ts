@@ -1,11 +1,19 @@
-import { ChangeDetectionStrategy, Component, computed, input, output } from '@angular/core';
+import { ChangeDetectionStrategy, Component, computed, input, output, signal } from '@angular/core';
 import { MatButtonModule } from '@angular/material/button';
 import { MatFormFieldModule } from '@angular/material/form-field';
 import { MatInputModule } from '@angular/material/input';
 import { MatSelectModule } from '@angular/material/select';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
-import type { ExclusionRule } from '@tallystone/contracts/samples/definition';
+import type { ColumnTest, ExclusionRule } from '@tallystone/contracts/samples/definition';
 import { type Condition, conditionOf, conditions, testWith, valueOf } from './exclusion-test';
+
+/** A test as its fields show it: as it is, or as it was typed with why it could not be taken. */
+interface ShownTest {
+  readonly column: string;
+  readonly condition: Condition;
+  readonly value: string;
+  readonly message: string | null;
+}
 
 /** Rules that take rows out, in the order in which they are asked; a row counts at the first that takes it out. */
 @Component({
@@ -47,9 +55,9 @@ import { type Condition, conditionOf, conditions, testWith, valueOf } from './ex
               <mat-form-field>
                 <mat-label>Column</mat-label>
                 <mat-select
-                  [value]="test.column"
+                  [value]="shown(place, index, test).column"
                   [disabled]="!editable()"
-                  (selectionChange)="setTest(place, index, $event.value, condition(test), value(test))"
+                  (selectionChange)="setTest(place, index, $event.value, shown(place, index, test).condition, value(test))"
                 >
                   @for (profile of columns(); track profile.column) {
                     <mat-option [value]="profile.column">{{ profile.column }}</mat-option>
@@ -59,25 +67,28 @@ import { type Condition, conditionOf, conditions, testWith, valueOf } from './ex
               <mat-form-field>
                 <mat-label>Test</mat-label>
                 <mat-select
-                  [value]="condition(test)"
+                  [value]="shown(place, index, test).condition"
                   [disabled]="!editable()"
-                  (selectionChange)="setTest(place, index, test.column, $event.value, value(test))"
+                  (selectionChange)="setTest(place, index, shown(place, index, test).column, $event.value, value(test))"
                 >
-                  @for (entry of allowed(test.column); track entry.key) {
+                  @for (entry of allowed(shown(place, index, test).column); track entry.key) {
                     <mat-option [value]="entry.key">{{ entry.label }}</mat-option>
                   }
                 </mat-select>
               </mat-form-field>
-              @if (condition(test) !== 'missing' && condition(test) !== 'not missing') {
+              @if (isValued(shown(place, index, test).condition)) {
                 <mat-form-field>
                   <mat-label>{{
-                    condition(test) === 'in' || condition(test) === 'notIn' ? 'Values, parted by commas' : 'Value'
+                    isListed(shown(place, index, test).condition) ? 'Values, parted by commas' : 'Value'
                   }}</mat-label>
                   <input
                     matInput
-                    [value]="value(test)"
+                    [value]="shown(place, index, test).value"
                     [disabled]="!editable()"
-                    (change)="setTest(place, index, test.column, condition(test), text($event))"
+                    [attr.aria-invalid]="shown(place, index, test).message ? true : null"
+                    (change)="
+                      setTest(place, index, shown(place, index, test).column, shown(place, index, test).condition, raw($event))
+                    "
                   />
                 </mat-form-field>
               }
@@ -90,6 +101,9 @@ import { type Condition, conditionOf, conditions, testWith, valueOf } from './ex
                 >
                   Remove
                 </button>
+              }
+              @if (shown(place, index, test).message; as message) {
+                <p class="refused" role="alert">{{ message }} Until then the test stays as it was: {{ words(test) }}.</p>
               }
             </div>
           }
@@ -140,6 +154,10 @@ import { type Condition, conditionOf, conditions, testWith, valueOf } from './ex
     .test button {
       justify-self: start;
     }
+    .refused {
+      grid-column: 1 / -1;
+      color: var(--mat-sys-error);
+    }
     .head mat-form-field:first-child {
       grid-column: span 2;
     }
@@ -160,8 +178,9 @@ export class ExclusionList {
   readonly editable = input(false);
   readonly changed = output<ExclusionRule[]>();
 
-  protected readonly condition = conditionOf;
   protected readonly value = valueOf;
+  /** What was typed and could not be taken: shown where it was typed, while the rule keeps what it had. */
+  private readonly refused = signal<(ShownTest & { readonly place: number; readonly index: number }) | null>(null);
   private readonly byName = computed(() => new Map(this.columns().map((profile) => [profile.column, profile])));
 
   /** Limits are for numbers and dates; values of hashed columns are shown nowhere and cannot be named. */
@@ -175,7 +194,30 @@ export class ExclusionList {
   }
 
   protected text(event: Event): string {
-    return (event.target as HTMLInputElement).value.trim();
+    return this.raw(event).trim();
+  }
+
+  protected raw(event: Event): string {
+    return (event.target as HTMLInputElement).value;
+  }
+
+  protected isValued(condition: Condition): boolean {
+    return condition !== 'missing' && condition !== 'not missing';
+  }
+
+  protected isListed(condition: Condition): boolean {
+    return condition === 'in' || condition === 'notIn';
+  }
+
+  protected shown(place: number, index: number, test: ColumnTest): ShownTest {
+    const refused = this.refused();
+    if (refused?.place === place && refused.index === index) return refused;
+    return { column: test.column, condition: conditionOf(test), value: valueOf(test), message: null };
+  }
+
+  protected words(test: ColumnTest): string {
+    const label = conditions.find(({ key }) => key === conditionOf(test))?.label ?? '';
+    return `${test.column} ${label} ${valueOf(test)}`.trim();
   }
 
   protected set(place: number, change: Partial<ExclusionRule>): void {
@@ -185,6 +227,11 @@ export class ExclusionList {
   protected setTest(place: number, index: number, column: string, condition: Condition, value: string): void {
     const kind = this.byName().get(column)?.kind ?? 'categorical';
     const test = testWith(column, kind, condition, value);
+    if ('message' in test) {
+      this.refused.set({ place, index, column, condition, value, message: test.message });
+      return;
+    }
+    this.refused.set(null);
     this.set(place, { tests: this.rules()[place].tests.map((entry, at) => (at === index ? test : entry)) });
   }
 
@@ -194,6 +241,7 @@ export class ExclusionList {
   }
 
   protected removeTest(place: number, index: number): void {
+    this.refused.set(null);
     this.set(place, { tests: this.rules()[place].tests.filter((_, at) => at !== index) });
   }
 
@@ -203,10 +251,12 @@ export class ExclusionList {
   }
 
   protected remove(place: number): void {
+    this.refused.set(null);
     this.changed.emit(this.rules().filter((_, index) => index !== place));
   }
 
   protected move(place: number, by: number): void {
+    this.refused.set(null);
     const rules = [...this.rules()];
     const [rule] = rules.splice(place, 1);
     rules.splice(place + by, 0, rule);

@@ -1,4 +1,5 @@
 import type { ColumnTest } from '@tallystone/contracts/samples/definition';
+import { readListed, readNumber, writeListed } from './listed-values';
 
 /** What one test asks, in the words of its menu. A test of the specification may combine several; this editor makes one at a time. */
 export type Condition = 'in' | 'notIn' | 'below' | 'atMost' | 'above' | 'atLeast' | 'missing' | 'not missing';
@@ -27,27 +28,38 @@ export function valueOf(test: ColumnTest): string {
   const condition = conditionOf(test);
   if (condition === 'missing' || condition === 'not missing') return '';
   const value = test[condition];
-  return Array.isArray(value) ? value.join(', ') : String(value ?? '');
+  return Array.isArray(value) ? writeListed(value) : String(value ?? '');
 }
 
-/** Values are compared as text, limits as numbers or ISO dates by the kind of the column; what is no number becomes 0, which the person sees. */
+/** What a field cannot be taken for, to be said beside it. */
+export interface NotTaken {
+  readonly message: string;
+}
+
+/**
+ * Values are compared as text, limits as numbers or ISO dates by the kind of the column. What is neither is never taken for another number: it is
+ * refused with what can be typed instead.
+ */
 export function testWith(
   column: string,
   kind: 'numeric' | 'categorical' | 'date',
   condition: Condition,
   value: string,
-): ColumnTest {
+): ColumnTest | NotTaken {
   if (condition === 'missing' || condition === 'not missing') return { column, missing: condition === 'missing' };
   if (condition === 'in' || condition === 'notIn') {
-    return {
-      column,
-      [condition]: value
-        .split(',')
-        .map((part) => part.trim())
-        .filter((part) => part !== ''),
-    };
+    const values = readListed(value);
+    return values ? { column, [condition]: values } : { message: 'A quote is not closed. Write it as "a, b", "c".' };
   }
-  if (kind === 'date' && /^\d{4}-\d{2}-\d{2}$/.test(value)) return { column, [condition]: value };
-  const number = Number(value.replace(',', '.').replace('\u2212', '-'));
-  return { column, [condition]: Number.isFinite(number) && value.trim() !== '' ? number : 0 };
+  const typed = value.trim();
+  if (kind === 'date') {
+    // A day that is none, such as 2024-02-30, moves on to another one: it comes back changed.
+    const day = /^\d{4}-\d{2}-\d{2}$/.test(typed) ? new Date(`${typed}T00:00:00Z`) : null;
+    const isDay = day !== null && !Number.isNaN(day.getTime()) && day.toISOString().startsWith(typed);
+    return isDay ? { column, [condition]: typed } : { message: 'Type a day as 2024-12-31.' };
+  }
+  const number = readNumber(typed);
+  return number === null
+    ? { message: 'Type a number without thousands signs, such as 1000 or 1234.5.' }
+    : { column, [condition]: number };
 }

@@ -1,6 +1,7 @@
-import type { DefinitionCounts } from '@tallystone/contracts/samples/definition';
+import type { ColumnTest, DefinitionCounts } from '@tallystone/contracts/samples/definition';
 import { describe, expect, it } from 'vitest';
 import { badRateOut, countsFinding, plain, ruleParts, samplesFinding, sensitivityFinding, waterfallFinding } from './findings';
+import { readListed, writeListed } from './listed-values';
 import { conditionOf, testWith, valueOf } from './exclusion-test';
 
 const counts: DefinitionCounts = {
@@ -83,18 +84,41 @@ describe('a test of an exclusion', () => {
   it('comes back as it was written', () => {
     for (const [condition, value] of [
       ['in', 'staff, trial'],
+      ['in', '"staff, and their kin", " "'],
       ['notIn', 'web'],
       ['below', '21'],
       ['atLeast', '-5.5'],
       ['missing', ''],
       ['not missing', ''],
     ] as const) {
-      const test = testWith('column', 'numeric', condition, value);
+      const test = testWith('column', 'numeric', condition, value) as ColumnTest;
       expect([conditionOf(test), valueOf(test)]).toEqual([condition, value]);
     }
   });
   it('compares dates as dates and numbers as numbers', () => {
     expect(testWith('applied_on', 'date', 'below', '2025-01-01')).toEqual({ column: 'applied_on', below: '2025-01-01' });
     expect(testWith('age', 'numeric', 'below', '21,5')).toEqual({ column: 'age', below: 21.5 });
+    expect(testWith('age', 'numeric', 'below', '\u22121234.5')).toEqual({ column: 'age', below: -1234.5 });
+    expect(testWith('age', 'numeric', 'below', '0')).toEqual({ column: 'age', below: 0 });
+  });
+  it('takes nothing for a number that is none or could be two', () => {
+    for (const typed of ['', '1 000', '1.234,5', '1,234', '0x10', '1e3', '01/02/2024', 'abc', '1\u202f000'])
+      expect(testWith('age', 'numeric', 'below', typed), typed).toEqual({
+        message: 'Type a number without thousands signs, such as 1000 or 1234.5.',
+      });
+    for (const typed of ['', '01/02/2024', '2024-02-30', '2024'])
+      expect(testWith('applied_on', 'date', 'below', typed), typed).toEqual({ message: 'Type a day as 2024-12-31.' });
+    expect(testWith('home', 'categorical', 'in', '"a, b')).toEqual({
+      message: 'A quote is not closed. Write it as "a, b", "c".',
+    });
+  });
+});
+
+describe('values in one field', () => {
+  it('stand in quotes where a comma or a blank belongs to one of them', () => {
+    expect(readListed('NA, "a, b", " ", "say ""no""", NA,')).toEqual(['NA', 'a, b', ' ', 'say "no"']);
+    for (const values of [['NA', 'a, b', ' '], ['say "no"'], ['', 'x'], []])
+      expect(readListed(writeListed(values))).toEqual(values);
+    for (const text of ['"a', 'x, "a" b', '"a"b']) expect(readListed(text), text).toBeNull();
   });
 });

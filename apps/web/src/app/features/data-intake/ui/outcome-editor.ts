@@ -141,7 +141,7 @@ export class OutcomeEditor {
     this.outcome.emit({ ...this.content().outcome, rule });
   }
 
-  protected map({ value, meaning }: { value: string; meaning: string }): void {
+  protected map({ value, meaning }: { value: string; meaning: string | null }): void {
     const { outcome } = this.content();
     const without = (list: readonly string[]): string[] => list.filter((entry) => entry !== value);
     const next: DraftOutcome = {
@@ -150,7 +150,7 @@ export class OutcomeEditor {
       indeterminate: without(outcome.indeterminate),
       excluded: without(outcome.excluded),
     };
-    next[meaning as Valued].push(value);
+    if (meaning !== null) next[meaning as Valued].push(value);
     this.outcome.emit(next);
   }
 

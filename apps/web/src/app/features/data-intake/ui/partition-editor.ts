@@ -175,7 +175,7 @@ export class PartitionEditor {
     this.changed.emit({ ...seeded, outOfTime: { ...seeded.outOfTime, [end]: (event.target as HTMLInputElement).value || null } });
   }
 
-  protected map({ value, meaning }: { value: string; meaning: string }): void {
+  protected map({ value, meaning }: { value: string; meaning: string | null }): void {
     const partition = this.partition();
     if (partition.by !== 'column') return;
     const without = (list: readonly string[]): string[] => list.filter((entry) => entry !== value);
@@ -185,7 +185,7 @@ export class PartitionEditor {
       holdOut: without(partition.holdOut),
       outOfTime: without(partition.outOfTime),
     };
-    next[meaning as 'development' | 'holdOut' | 'outOfTime'].push(value);
+    if (meaning !== null) next[meaning as 'development' | 'holdOut' | 'outOfTime'].push(value);
     this.changed.emit(next);
   }
 }

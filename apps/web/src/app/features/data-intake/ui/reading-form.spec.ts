@@ -69,4 +69,18 @@ describe('the reading choices', () => {
     missing?.dispatchEvent(new Event('change'));
     expect(told).toEqual([{ thousands: null }, { missing: ['', 'NULL', '.'] }]);
   });
+
+  it('keep a token of blanks and one with a comma, and take nothing while a quote is open', () => {
+    fixture.componentRef.setInput('choices', { ...choices, missing: ['', ' ', 'n.a., none'] });
+    fixture.detectChanges();
+    const missing = (fixture.nativeElement as HTMLElement).querySelector<HTMLInputElement>('input[placeholder]')!;
+    expect(missing.value).toBe('" ", "n.a., none"');
+    for (const typed of ['" ", "n.a., none", NA', '" ", "n.a.']) {
+      missing.value = typed;
+      missing.dispatchEvent(new Event('change'));
+    }
+    expect(told).toEqual([{ missing: ['', ' ', 'n.a., none', 'NA'] }]);
+    fixture.detectChanges();
+    expect((fixture.nativeElement as HTMLElement).textContent).toContain('A quote is not closed, so nothing was changed.');
+  });
 });

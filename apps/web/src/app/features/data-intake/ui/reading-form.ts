@@ -1,9 +1,10 @@
-import { ChangeDetectionStrategy, Component, computed, input, output } from '@angular/core';
+import { ChangeDetectionStrategy, Component, computed, input, output, signal } from '@angular/core';
 import { MatCheckboxModule } from '@angular/material/checkbox';
 import { MatFormFieldModule } from '@angular/material/form-field';
 import { MatInputModule } from '@angular/material/input';
 import { MatSelectModule } from '@angular/material/select';
 import type { Preview, ReadingChoices } from '@tallystone/contracts/samples/reading';
+import { readListed, writeListed } from './listed-values';
 import { dateOrders, orderWords } from './date-orders';
 
 type Choice = Preview['reasons'][number]['choice'];
@@ -89,7 +90,9 @@ type Choice = Preview['reasons'][number]['choice'];
       <mat-form-field>
         <mat-label>Missing, beside the empty field</mat-label>
         <input matInput [value]="missing()" [disabled]="disabled()" placeholder="NA, NULL" (change)="setMissing($event)" />
-        <mat-hint>{{ why('missing') || 'Parted by commas.' }}</mat-hint>
+        <mat-hint>{{
+          notTaken() ?? (why('missing') || 'Parted by commas; in quotes where one holds a comma or blanks.')
+        }}</mat-hint>
       </mat-form-field>
       <div>
         <mat-checkbox [checked]="choices().trim" [disabled]="disabled()" (change)="changed.emit({ trim: $event.checked })">
@@ -116,18 +119,16 @@ export class ReadingForm {
 
   protected readonly orders = dateOrders;
   protected readonly orderWords = orderWords;
-  protected readonly missing = computed(() =>
-    this.choices()
-      .missing.filter((token) => token !== '')
-      .join(', '),
-  );
+  protected readonly missing = computed(() => writeListed(this.choices().missing.filter((token) => token !== '')));
+  protected readonly notTaken = signal<string | null>(null);
 
   protected why(choice: Choice): string {
     return this.reasons().find((entry) => entry.choice === choice)?.reason ?? '';
   }
 
   protected setMissing(event: Event): void {
-    const tokens = (event.target as HTMLInputElement).value.split(',').map((token) => token.trim());
-    this.changed.emit({ missing: ['', ...new Set(tokens.filter((token) => token !== ''))] });
+    const tokens = readListed((event.target as HTMLInputElement).value);
+    this.notTaken.set(tokens ? null : 'A quote is not closed, so nothing was changed. Write it as "a, b", " ".');
+    if (tokens) this.changed.emit({ missing: ['', ...tokens.filter((token) => token !== '')] });
   }
 }

@@ -33,7 +33,7 @@ export interface Meaning {
             [hideSingleSelectionIndicator]="true"
           >
             @for (meaning of meanings(); track meaning.key) {
-              <mat-button-toggle [value]="meaning.key" (change)="mapped.emit({ value: entry.value, meaning: meaning.key })">{{
+              <mat-button-toggle [value]="meaning.key" (click)="choose(entry, meaning.key)">{{
                 meaning.label
               }}</mat-button-toggle>
             }
@@ -77,7 +77,13 @@ export class ValueMapping {
   readonly meanings = input.required<readonly Meaning[]>();
   readonly rows = input(1);
   readonly editable = input(false);
-  readonly mapped = output<{ value: string; meaning: string }>();
+  /** Null takes the meaning back. */
+  readonly mapped = output<{ value: string; meaning: string | null }>();
   protected readonly count = count;
   protected readonly share = share;
+
+  /** A group of toggles never lets its last one go by itself: pressing again is seen here. */
+  protected choose({ value, meaning }: MappedValue, pressed: string): void {
+    if (this.editable()) this.mapped.emit({ value, meaning: meaning === pressed ? null : pressed });
+  }
 }

@@ -1,0 +1,48 @@
+import { type ComponentFixture, TestBed } from '@angular/core/testing';
+import { ValueMapping } from './value-mapping';
+
+describe('the meaning of a value', () => {
+  let fixture: ComponentFixture<ValueMapping>;
+  const told: { value: string; meaning: string | null }[] = [];
+  const press = (label: string): void => {
+    const buttons = [...(fixture.nativeElement as HTMLElement).querySelectorAll<HTMLButtonElement>('mat-button-toggle button')];
+    buttons.find(({ textContent }) => textContent.trim() === label)?.click();
+  };
+  const show = (meaning: string | null): void => {
+    fixture.componentRef.setInput('values', [{ value: 'paid', count: 10, meaning }]);
+    fixture.detectChanges();
+  };
+
+  beforeEach(() => {
+    told.length = 0;
+    fixture = TestBed.createComponent(ValueMapping);
+    fixture.componentRef.setInput('label', 'What each outcome means');
+    fixture.componentRef.setInput('meanings', [
+      { key: 'good', label: 'Good' },
+      { key: 'bad', label: 'Bad' },
+    ]);
+    fixture.componentRef.setInput('editable', true);
+    fixture.componentInstance.mapped.subscribe((change) => told.push(change));
+    show(null);
+  });
+
+  it('is given by pressing, changed by pressing another, and taken back by pressing it again', () => {
+    press('Good');
+    show('good');
+    press('Bad');
+    show('bad');
+    press('Bad');
+    show(null);
+    expect(told.map(({ meaning }) => meaning)).toEqual(['good', 'bad', null]);
+    expect((fixture.nativeElement as HTMLElement).querySelectorAll('.mat-button-toggle-checked')).toHaveLength(0);
+    press('Bad');
+    expect(told.at(-1)).toEqual({ value: 'paid', meaning: 'bad' });
+  });
+
+  it('stays where nobody may change it', () => {
+    fixture.componentRef.setInput('editable', false);
+    show('good');
+    press('Good');
+    expect(told).toEqual([]);
+  });
+});
