@@ -120,6 +120,86 @@ describe('the binning figure', () => {
     expect(host.edits).toMatchObject([{ what: 'Cut moved from 20 to 30' }]);
   });
 
+  describe('a cut among fine edges that lie close together', () => {
+    // By value, over a scale of 0 to 100: 50 is the one round number among unround ones.
+    const edges = [10, 20, 30, 40, 47.6, 48.8, 50, 51.2, 52.4, 70, 90];
+    const dense = (values: readonly number[], many: number): number[] => [
+      ...Array<number>(edges.length + 1).fill(many),
+      ...values,
+    ];
+    const close: typeof utilisation = {
+      ...utilisation,
+      current: { kind: 'numeric', edges: [20, 48.8], special: ['own'], missing: 'own' },
+      fine: {
+        ...utilisation.fine,
+        edges,
+        development: { rows: dense([80, 60], 100), goods: dense([60, 50], 80), bads: dense([20, 10], 20) },
+        holdOut: { rows: dense([40, 30], 50), goods: dense([30, 25], 40), bads: dense([10, 5], 10) },
+      },
+    };
+    const grip = async () => {
+      const { host, root, fixture, cuts } = await setUp(close);
+      const svg = root.querySelector('svg[viewBox^="0 0"]') as SVGSVGElement;
+      svg.getBoundingClientRect = () => ({ left: 0, width: Number(svg.getAttribute('width')), top: 0, height: 100 }) as DOMRect;
+      const x = (cut: number): number => Number(cuts()[cut].querySelector('line')?.getAttribute('x1'));
+      const start = x(1);
+      // Pixels of one unit of the value, from the two cuts that are drawn.
+      const unit = (start - x(0)) / 28.8;
+      const pointer = async (type: string, away: number, altKey = false) => {
+        const event = new MouseEvent(type, { clientX: start + away, button: 0, bubbles: true, altKey });
+        cuts()[1].dispatchEvent(Object.assign(event, { pointerId: 1 }));
+        await fixture.whenStable();
+      };
+      return { host, pointer, unit };
+    };
+
+    it('does not move when it is only pressed, wherever in its grip', async () => {
+      const { host, pointer, unit } = await grip();
+      // 50 would be within reach of a cut that snaps.
+      expect(1.2 * unit).toBeLessThan(10);
+      for (const [down, up] of [
+        [0, 0],
+        [9, 9],
+        [0, 3],
+      ]) {
+        await pointer('pointerdown', down);
+        await pointer('pointermove', up);
+        await pointer('pointerup', up);
+      }
+      expect(host.edits).toEqual([]);
+      expect(host.previews).toEqual([]);
+      expect(host.cut()).toBe(1);
+    });
+
+    it('stays where it began when it is dragged away and back', async () => {
+      const { host, pointer } = await grip();
+      await pointer('pointerdown', 0);
+      await pointer('pointermove', 80);
+      await pointer('pointermove', 6);
+      expect(host.previews.at(-1)).toEqual(close.current);
+      await pointer('pointerup', 6);
+      expect(host.edits).toEqual([]);
+      expect(host.previews.at(-1)).toBeNull();
+    });
+
+    it('goes to a round number within reach', async () => {
+      const { host, pointer, unit } = await grip();
+      await pointer('pointerdown', 0);
+      await pointer('pointermove', 80);
+      // Nearer to 51.2 than to 50.
+      await pointer('pointerup', 2 * unit);
+      expect(host.edits).toMatchObject([{ what: 'Cut moved from 48.8 to 50' }]);
+    });
+
+    it('goes to the nearest fine edge with Alt', async () => {
+      const { host, pointer, unit } = await grip();
+      await pointer('pointerdown', 0);
+      await pointer('pointermove', 80, true);
+      await pointer('pointerup', 2 * unit, true);
+      expect(host.edits).toMatchObject([{ what: 'Cut moved from 48.8 to 51.2' }]);
+    });
+  });
+
   it('changes nothing for those who only read', async () => {
     const { host, fixture, press, cuts } = await setUp();
     host.editable.set(false);

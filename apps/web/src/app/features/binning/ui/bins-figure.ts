@@ -36,6 +36,9 @@ import { type AxisMode, type DrawnCut, categoryOrder, ladderScale, layOut, notch
 interface Dragged {
   readonly pointer: number;
   readonly cut: number;
+  /** Where the pointer went down. */
+  readonly fromX: number;
+  readonly moved: boolean;
   /** As they were when the drag began: the edit is against these. */
   readonly bins: NumericBins;
 }
@@ -49,8 +52,10 @@ interface DraggedCategory {
   readonly over: number | null;
 }
 
-/** A cut that is let go this near to a round number goes there, unless Alt is held. */
+/** A cut that is let go this near to a round number goes there, unless Alt is held; this near to where it began, it stays. */
 const snapReach = 10; // px
+/** A pointer that has moved less than this has pressed, not dragged. */
+const dragFrom = 4; // px
 
 interface TableRow {
   readonly bin: number;
@@ -288,13 +293,17 @@ export class BinsFigure {
     this.cut.set(cut);
     if (!this.editable() || bins.kind !== 'numeric' || event.button !== 0) return;
     (event.currentTarget as Element).setPointerCapture(event.pointerId);
-    this.dragged.set({ pointer: event.pointerId, cut, bins });
+    this.dragged.set({ pointer: event.pointerId, cut, fromX: event.clientX, moved: false, bins });
   }
 
   protected drag(event: PointerEvent): void {
     const dragged = this.dragged();
     if (!dragged || dragged.pointer !== event.pointerId) return;
-    const edge = this.nearest(dragged, this.atX(event), event.altKey);
+    if (!dragged.moved) {
+      if (Math.abs(event.clientX - dragged.fromX) < dragFrom) return;
+      this.dragged.set({ ...dragged, moved: true });
+    }
+    const edge = this.nearest(dragged, event);
     const moved = edge === null ? null : moveCut(this.fine(), dragged.bins, dragged.cut, edge);
     this.previewed.emit(moved?.bins ?? dragged.bins);
   }
@@ -303,7 +312,8 @@ export class BinsFigure {
     const dragged = this.dragged();
     if (!dragged || dragged.pointer !== event.pointerId) return;
     this.dragged.set(null);
-    const edge = this.nearest(dragged, this.atX(event), event.altKey);
+    if (!dragged.moved) return;
+    const edge = this.nearest(dragged, event);
     this.previewed.emit(null);
     if (edge !== null) this.emit(moveCut(this.fine(), dragged.bins, dragged.cut, edge));
   }
@@ -363,7 +373,7 @@ export class BinsFigure {
   protected carry(event: PointerEvent): void {
     const carried = this.carried();
     if (!carried || carried.pointer !== event.pointerId) return;
-    const moved = carried.moved || Math.abs(event.clientX - carried.fromX) > 4;
+    const moved = carried.moved || Math.abs(event.clientX - carried.fromX) >= dragFrom;
     this.carried.set({ ...carried, moved, over: moved ? this.groupAt(this.atX(event)) : null });
   }
 
@@ -391,13 +401,21 @@ export class BinsFigure {
     if (edit && edit.kind !== 'cut moved') this.chosen.set(new Set());
   }
 
-  /** The fine edge that a cut let go at x comes to: the nearest, or a rounder one within a few pixels. */
-  private nearest({ cut, bins }: Dragged, x: number, exact: boolean): number | null {
+  /**
+   * The fine edge that a cut which is let go here comes to: the one it began at where it is within a few pixels of it, else a rounder one within a
+   * few pixels, else the nearest. With Alt the nearest. The cut goes as far as the pointer went, wherever in its grip it was taken.
+   */
+  private nearest({ cut, bins, fromX }: Dragged, event: PointerEvent): number | null {
     const [low, high] = [bins.edges[cut - 1] ?? -Infinity, bins.edges[cut + 1] ?? Infinity];
-    const places = this.geometry()
-      .edges.filter(({ edge }) => edge > low && edge < high)
+    const { edges } = this.geometry();
+    const began = edges.find(({ edge }) => edge === bins.edges[cut]);
+    if (!began) return null;
+    const x = began.x + this.inDrawing(event.clientX - fromX);
+    if (!event.altKey && Math.abs(x - began.x) <= snapReach) return began.edge;
+    const places = edges
+      .filter(({ edge }) => edge > low && edge < high)
       .map((place) => ({ value: place.edge, away: Math.abs(place.x - x) }));
-    return snapped(places, exact ? 0 : snapReach)?.value ?? null;
+    return snapped(places, event.altKey ? 0 : snapReach)?.value ?? null;
   }
 
   private groupAt(x: number): number | null {
@@ -407,7 +425,12 @@ export class BinsFigure {
 
   /** Horizontal place of the pointer in the drawing's own pixels. */
   private atX(event: PointerEvent): number {
-    const box = this.svg()?.nativeElement.getBoundingClientRect();
-    return box && box.width > 0 ? ((event.clientX - box.left) * this.geometry().width) / box.width : 0;
+    return this.inDrawing(event.clientX - (this.svg()?.nativeElement.getBoundingClientRect().left ?? 0));
+  }
+
+  /** A length on the screen in the drawing's own pixels. */
+  private inDrawing(length: number): number {
+    const shown = this.svg()?.nativeElement.getBoundingClientRect().width ?? 0;
+    return shown > 0 ? (length * this.geometry().width) / shown : 0;
   }
 }
