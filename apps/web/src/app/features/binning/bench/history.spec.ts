@@ -7,8 +7,10 @@ import {
   explain,
   keepMine,
   mostSteps,
+  reachable,
   redo,
   reset,
+  takeTheirs,
   toSave,
   undo,
   unexplained,
@@ -91,15 +93,103 @@ describe('the history of a bench', () => {
     expect(reset(fresh)).toBe(fresh);
   });
 
-  it('keeps mine over theirs with one more edit, and theirs stays in the chain', () => {
-    const theirs = later(begin(automatic, []), (bins) => addCut(fine, bins, 80));
-    const editList = theirs.edits.map((edit) => ({ ...edit, by: 'Colin', at: '2026-01-01T00:00:00Z', inEffect: true })) as never;
-    const mine: NumericBins = { ...automatic, edges: [20, 60] };
-    const kept = keepMine({ automatic, current: currentBins(theirs), editList, changedBy: 'Colin' }, mine, 'mine');
-    expect(kept.edits).toMatchObject([
-      { kind: 'cut added' },
-      { kind: 'kept own', what: 'Kept own bins over those of Colin', after: mine },
-    ]);
-    expect(currentBins(undo(kept))).toEqual(currentBins(theirs));
+  it('goes back through what is stored, fifty steps at most', () => {
+    let history = begin(automatic, []);
+    for (let step = 0; step < 60; step++) history = later(history, (bins) => moveCut(fine, bins, 0, step % 2 === 0 ? 10 : 20));
+    history = explain(history, history.edits[58].id, { code: 'round number', text: '' });
+    let read = begin(automatic, history.edits);
+    expect(currentBins(read)).toEqual(currentBins(history));
+    for (let made = 59; made >= 60 - mostSteps; made--) {
+      read = undo(read);
+      expect(read.edits).toEqual(history.edits.slice(0, made));
+    }
+    expect(undo(read)).toBe(read);
+    expect(redo(read).edits).toHaveLength(11);
+    // A quick move after reading is an edit of its own: the stored one stays as it was saved.
+    const next = later(begin(automatic, history.edits.slice(0, 1)), (bins) => moveCut(fine, bins, 0, 30), 1);
+    expect(next.edits).toHaveLength(2);
+  });
+
+  describe('when somebody else saved first', () => {
+    const newId = (): string => `new-${ids++}`;
+    const saved = (history: History) => ({ automatic, current: currentBins(history), editList: history.edits });
+    /** Every edit begins where the one before ended: what the server asks of a save. */
+    const joins = (history: History): void => {
+      let from = history.automatic;
+      for (const edit of history.edits) {
+        expect(edit.before).toEqual(from);
+        from = edit.after;
+      }
+      expect(new Set(history.edits.map(({ id }) => id)).size).toBe(history.edits.length);
+    };
+    const shared = later(begin(automatic, []), (bins) => addCut(fine, bins, 80));
+    const theirs = later(shared, (bins) => addCut(fine, bins, 90));
+    let mine = later(shared, (bins) => mergeNumeric(fine, bins, 0));
+    mine = later(mine, (bins) => addCut(fine, bins, 60));
+    mine = explain(mine, mine.edits[1].id, { code: 'bin too small', text: 'of old customers' });
+    mine = explain(mine, mine.edits[0].id, { code: 'round number', text: '' });
+
+    it('keeps mine with every edit of mine as it was made, and theirs in the chain', () => {
+      const kept = keepMine(saved(theirs), mine, 'those of Colin', newId);
+      joins(kept);
+      expect(currentBins(kept)).toEqual(currentBins(mine));
+      expect(kept.edits.map(({ what }) => what)).toEqual([
+        'Cut added at 80',
+        'Cut added at 90',
+        'Kept own bins over those of Colin',
+        'Merged under 20 with 20 to under 40',
+        'Cut added at 60',
+      ]);
+      expect(kept.edits.map(({ reason }) => reason?.code ?? null)).toEqual(['round number', null, null, 'bin too small', null]);
+      expect(kept.edits[3]).toEqual(mine.edits[1]);
+      // Own edits one by one, the one between, and then theirs.
+      expect(currentBins(undo(undo(undo(kept))))).toEqual(currentBins(theirs));
+    });
+
+    it('needs no edit between where theirs ends at what both began with', () => {
+      const kept = keepMine(saved(shared), mine, 'those of Colin', newId);
+      expect(kept.edits).toEqual(mine.edits);
+      expect(keepMine(saved(mine), mine, 'those of Colin', newId).edits).toEqual(mine.edits);
+    });
+
+    it('keeps what was taken back here, and edits that both took back or made again', () => {
+      // Mine is one of the stored edits less; theirs has one more.
+      const fewer = undo(shared);
+      const kept = keepMine(saved(theirs), fewer, 'those of Colin', newId);
+      joins(kept);
+      expect(kept.edits.map(({ kind }) => kind)).toEqual(['cut added', 'cut added', 'kept own']);
+      expect(currentBins(kept)).toEqual(automatic);
+      // They took the first edit back that both had: it is made again with mine.
+      const without = later(undo(shared), (bins) => addCut(fine, bins, 70));
+      const again = keepMine(saved(without), mine, 'those of Colin', newId);
+      joins(again);
+      expect(again.edits.map(({ id }) => id).slice(2)).toEqual(mine.edits.map(({ id }) => id));
+      // They put it behind an edit of their own: it stands in the list already and gets an id of its own.
+      const behind = keepMine(saved(without), shared, 'those of Colin', newId);
+      const twice = keepMine(saved(behind), mine, 'those of Colin', newId);
+      joins(twice);
+      expect(currentBins(twice)).toEqual(currentBins(mine));
+    });
+
+    it('keeps edits over bins that were classed anew', () => {
+      const anew: NumericBins = { ...automatic, edges: [50] };
+      const kept = keepMine({ automatic: anew, current: anew, editList: [] }, mine, 'those classed anew', newId);
+      joins(kept);
+      expect(kept.edits.map(({ kind }) => kind)).toEqual(['kept own', 'cut added', 'bins merged', 'cut added']);
+      expect(kept.edits[0]).toMatchObject({ before: anew, after: automatic });
+      expect(currentBins(kept)).toEqual(currentBins(mine));
+    });
+
+    it('takes theirs with reasons that were given here, and undo comes to mine first', () => {
+      const taken = takeTheirs(saved(theirs), mine);
+      expect(currentBins(taken)).toEqual(currentBins(theirs));
+      expect(taken.edits.map(({ reason }) => reason?.code ?? null)).toEqual(['round number', null]);
+      const kept = keepMine(saved(theirs), mine, 'those of Colin', newId);
+      const history = reachable(taken, kept);
+      expect(history.edits).toEqual(taken.edits);
+      expect(undo(history).edits).toEqual(kept.edits);
+      expect(undo(undo(history)).edits).toEqual(taken.edits);
+      expect(redo(undo(history)).edits).toEqual(taken.edits);
+    });
   });
 });

@@ -19,8 +19,14 @@ export interface History {
   readonly lastAt: number;
 }
 
+/**
+ * The history as it is read: edits in effect lead from the automatic bins to the current ones, so each list of the first of them is a state that was
+ * there, and undo goes back through these, whoever made them and whenever.
+ */
 export function begin(automatic: Bins, edits: readonly (BenchEdit | Edit)[]): History {
-  return { automatic, past: [], edits: edits.map(asSent), future: [], lastAt: -Infinity };
+  const sent = edits.map(asSent);
+  const past = sent.map((_, made) => sent.slice(0, made)).slice(-mostSteps);
+  return { automatic, past, edits: sent, future: [], lastAt: -Infinity };
 }
 
 export const currentBins = (history: History): Bins => history.edits.at(-1)?.after ?? history.automatic;
@@ -87,23 +93,55 @@ export function toSave(history: History): { bins: SavedBins; edits: SentEdit[] }
   return { bins: currentBins(history) as SavedBins, edits: history.edits as SentEdit[] };
 }
 
-/** Own bins over those that somebody else saved: their edits stay, and one more leads from theirs to mine. */
-export function keepMine(
-  theirs: { automatic: Bins; current: Bins; editList: readonly Edit[]; changedBy: string },
-  mine: Bins,
-  id: string,
-): History {
-  const start = begin(theirs.automatic, theirs.editList);
-  if (equal(theirs.current, mine)) return start;
+/** What was saved meanwhile: by somebody else, or by classing anew. */
+export interface Saved {
+  readonly automatic: Bins;
+  readonly current: Bins;
+  readonly editList: readonly (BenchEdit | Edit)[];
+}
+
+/**
+ * Own bins over those that were saved meanwhile. Their edits stay; one more leads from their bins to those from which the two part, and own edits follow
+ * from there as they were made, each with its sentence and reason. Undo takes them back one by one, then that one more, then theirs.
+ *
+ * @param over whose bins these are put over: "those of Colin"
+ * @param newId of an edit, unique everywhere
+ */
+export function keepMine(theirs: Saved, mine: History, over: string, newId: () => string): History {
+  const start = takeTheirs(theirs, mine);
+  if (equal(theirs.current, currentBins(mine))) return start;
+  let shared = 0;
+  // Edits lead on from the automatic bins: after classing anew no edit is the same.
+  if (equal(theirs.automatic, mine.automatic))
+    while (shared < mine.edits.length && mine.edits[shared].id === start.edits[shared]?.id) shared++;
+  const own = mine.edits.slice(shared);
+  const parting = own[0]?.before ?? currentBins(mine);
   const kept: BenchEdit = {
-    id,
+    id: newId(),
     kind: 'kept own',
-    what: `Kept own bins over those of ${theirs.changedBy}`,
+    what: `Kept own bins over ${over}`,
     before: theirs.current,
-    after: mine,
+    after: parting,
     reason: null,
   };
-  return step(start, [...start.edits, kept]);
+  // An edit that stands in their list at another place is made once more.
+  const taken = new Set(start.edits.map(({ id }) => id));
+  const made = own.map((edit) => (taken.has(edit.id) ? { ...edit, id: newId() } : edit));
+  return begin(theirs.automatic, [...start.edits, ...(equal(theirs.current, parting) ? [] : [kept]), ...made]);
+}
+
+/** Their bins; a reason that was given here to an edit of theirs without one stays. */
+export function takeTheirs(theirs: Saved, mine: History): History {
+  const given = new Map(mine.edits.map(({ id, reason }) => [id, reason]));
+  return begin(
+    theirs.automatic,
+    theirs.editList.map((edit) => ({ ...asSent(edit), reason: edit.reason ?? given.get(edit.id) ?? null })),
+  );
+}
+
+/** The same history with one more state that undo comes to first: what was let go, which is not lost. */
+export function reachable(history: History, letGo: History): History {
+  return { ...history, past: [...history.past, history.edits, letGo.edits].slice(-mostSteps) };
 }
 
 function step(history: History, edits: readonly BenchEdit[]): History {

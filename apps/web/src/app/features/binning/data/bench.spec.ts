@@ -70,7 +70,7 @@ describe('the bench of one characteristic', () => {
     expect(bins().edges).toEqual([20, 40]);
   });
 
-  it('meets whoever saved first, and keeps mine over theirs as one more edit', async () => {
+  it('meets whoever saved first, and keeps mine over theirs with the edits that made them', async () => {
     bench.do(addCut(utilisation.fine, bins(), 60));
     const flushed = bench.flush();
     await settled();
@@ -100,11 +100,117 @@ describe('the bench of one characteristic', () => {
     await settled();
     const request = http.expectOne({ method: 'PUT', url });
     expect(request.request.headers.get('If-Match')).toBe('"4"');
-    expect(request.request.body.edits.map((sent: { kind: string }) => sent.kind)).toEqual(['cut added', 'kept own']);
+    expect(request.request.body.edits.map((sent: { kind: string }) => sent.kind)).toEqual(['cut added', 'kept own', 'cut added']);
     expect(request.request.body.bins.edges).toEqual([20, 40, 60]);
     request.flush({ ...utilisation, revision: 5 }, tag(5));
     await saving;
     expect(bench.state()).toBe('saved');
+  });
+
+  it('saves two seconds after the first unsaved edit at the latest, however quickly others follow', async () => {
+    vi.useFakeTimers();
+    try {
+      const sent: number[] = [];
+      const start = performance.now();
+      const edges = (count: number): number => (count % 2 === 0 ? 60 : 80);
+      for (let count = 0; count < 12; count++) {
+        // An edit each 0.8 s: no pause is as long as a save waits for.
+        bench.do(count % 2 === 0 ? addCut(utilisation.fine, bins(), edges(count)) : mergeNumeric(utilisation.fine, bins(), 2));
+        await vi.advanceTimersByTimeAsync(800);
+        for (const request of http.match({ method: 'PUT', url })) {
+          sent.push(performance.now() - start);
+          request.flush({ ...utilisation, revision: 4 }, tag(4));
+          await vi.advanceTimersByTimeAsync(0);
+        }
+      }
+      // Looked at every 0.8 s: the first is sent at 2.0 s, and each after that within 2 s of the first edit it has.
+      expect(sent.map((at) => Math.round(at / 100) / 10)).toEqual([2.4, 4.8, 7.2, 9.6]);
+      // Left alone, the usual pause is waited for and no more.
+      bench.do(addCut(utilisation.fine, bins(), 90));
+      await vi.advanceTimersByTimeAsync(1199);
+      expect(http.match({ method: 'PUT', url })).toHaveLength(0);
+      await vi.advanceTimersByTimeAsync(1);
+      for (const request of http.match({ method: 'PUT', url })) request.flush({ ...utilisation, revision: 5 }, tag(5));
+      await vi.advanceTimersByTimeAsync(0);
+      expect(bench.state()).toBe('saved');
+    } finally {
+      vi.useRealTimers();
+    }
+  });
+
+  it('saves what was edited during a slow save as soon as that is answered, once its two seconds are over', async () => {
+    vi.useFakeTimers();
+    try {
+      bench.do(addCut(utilisation.fine, bins(), 60));
+      await vi.advanceTimersByTimeAsync(1200);
+      const [slow] = http.match({ method: 'PUT', url });
+      bench.do(addCut(utilisation.fine, bins(), 80));
+      await vi.advanceTimersByTimeAsync(3000);
+      expect(http.match({ method: 'PUT', url })).toHaveLength(0);
+      slow.flush({ ...utilisation, revision: 4 }, tag(4));
+      await vi.advanceTimersByTimeAsync(0);
+      const [next] = http.match({ method: 'PUT', url });
+      expect(next.request.body.bins.edges).toEqual([20, 40, 60, 80]);
+      next.flush({ ...utilisation, revision: 5 }, tag(5));
+      await vi.advanceTimersByTimeAsync(0);
+      expect(bench.state()).toBe('saved');
+    } finally {
+      vi.useRealTimers();
+    }
+  });
+
+  it('undoes what was saved before it was read', async () => {
+    const list = ['first', 'second'].map((id, place) => ({
+      id,
+      kind: 'cut added' as const,
+      what: `Cut added at ${60 + 10 * place}`,
+      before: { ...utilisation.current, edges: place === 0 ? [20, 40] : [20, 40, 60] },
+      after: { ...utilisation.current, edges: place === 0 ? [20, 40, 60] : [20, 40, 60, 70] },
+      reason: { code: 'round number' as const, text: '' },
+      by: 'Modeller',
+      at: '2026-03-01T10:00:00Z',
+      inEffect: true,
+      carriedFrom: null,
+      notCarried: null,
+    }));
+    const loading = bench.load('b', utilisation.id);
+    await settled();
+    http.expectOne(url).flush({ ...utilisation, current: list[1].after, editList: list, edits: 2 }, tag(3));
+    await loading;
+    bench.undo();
+    expect(bins().edges).toEqual([20, 40, 60]);
+    const flushed = bench.flush();
+    await settled();
+    const request = http.expectOne({ method: 'PUT', url });
+    expect(request.request.body.edits).toMatchObject([{ id: 'first', reason: { code: 'round number' } }]);
+    request.flush({ ...utilisation, revision: 4 }, tag(4));
+    await flushed;
+  });
+
+  it('brings back by undo what classing anew ended', async () => {
+    bench.do(addCut(utilisation.fine, bins(), 60));
+    const flushed = bench.flush();
+    await settled();
+    http.expectOne({ method: 'PUT', url }).flush({ ...utilisation, revision: 4 }, tag(4));
+    await flushed;
+    const reading = bench.readAnew();
+    await settled();
+    const automatic = { ...utilisation.automatic, edges: [50] };
+    http.expectOne(url).flush({ ...utilisation, automatic, current: automatic, revision: 5 }, tag(5));
+    await reading;
+    expect([bench.state(), bins().edges]).toEqual(['saved', [50]]);
+    bench.undo();
+    expect(bins().edges).toEqual([20, 40, 60]);
+    const saving = bench.flush();
+    await settled();
+    const request = http.expectOne({ method: 'PUT', url });
+    expect(request.request.headers.get('If-Match')).toBe('"5"');
+    expect(request.request.body.edits).toMatchObject([
+      { kind: 'kept own', what: 'Kept own bins over those classed anew', before: automatic, after: utilisation.automatic },
+      { kind: 'cut added', what: 'Cut added at 60' },
+    ]);
+    request.flush({ ...utilisation, revision: 6 }, tag(6));
+    await saving;
   });
 
   it('takes theirs', async () => {
@@ -117,6 +223,15 @@ describe('the bench of one characteristic', () => {
     await flushed;
     bench.takeTheirs();
     expect([bench.state(), bins().edges]).toEqual(['saved', [20, 40]]);
+    // Own edits are not lost: undo comes to them first.
+    bench.undo();
+    expect([bench.state(), bins().edges]).toEqual(['waiting', [20, 40, 60]]);
+    bench.redo();
+    const saving = bench.flush();
+    await settled();
+    http.expectOne({ method: 'PUT', url }).flush({ ...utilisation, revision: 5 }, tag(5));
+    await saving;
+    expect(bins().edges).toEqual([20, 40]);
   });
 
   it('splits a fine class for a value that lies inside one', async () => {

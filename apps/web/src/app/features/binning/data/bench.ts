@@ -20,8 +20,10 @@ import {
   currentBins,
   explain,
   keepMine,
+  reachable,
   redo,
   reset,
+  takeTheirs,
   toSave,
   undo,
   unexplained,
@@ -31,6 +33,8 @@ import { Binnings, type CharacteristicDetail } from './binnings';
 
 /** Time without a further edit after which the bench is saved. */
 const saveAfter = 1200; // ms
+/** However quickly edits follow one another: the first that is not saved waits no longer than this. */
+const saveWithin = 2000; // ms
 const retryAfter = 5000; // ms
 
 /** waiting: an edit is not sent yet; stale: somebody else saved first and a person must say which bins stay. */
@@ -46,6 +50,8 @@ export class Bench {
   private address: { binningId: string; characteristicId: string } | null = null;
   private etag = '';
   private timer: ReturnType<typeof setTimeout> | undefined;
+  /** When the first edit was made that has not been sent; null where all have. */
+  private waitingSince: number | null = null;
   private saving: Promise<void> | null = null;
 
   private readonly detailOf = signal<CharacteristicDetail | null>(null);
@@ -92,6 +98,7 @@ export class Bench {
   async load(binningId: string, characteristicId: string): Promise<void> {
     await this.flush();
     clearTimeout(this.timer);
+    this.waitingSince = null;
     this.address = { binningId, characteristicId };
     this.stateOf.set('saved');
     this.previewOf.set(null);
@@ -161,21 +168,46 @@ export class Bench {
     if (this.stateOf() === 'waiting' || this.stateOf() === 'failed') await this.save();
   }
 
-  /** Their bins, and what was edited here is let go. */
+  /** Their bins; undo brings own edits back, over theirs. */
   takeTheirs(): void {
     const theirs = this.theirsOf();
-    if (theirs) this.take(theirs);
+    const mine = this.historyOf();
+    if (!theirs || !mine) return;
+    this.take(theirs);
+    const taken = takeTheirs(theirs.value, mine);
+    this.historyOf.set(reachable(taken, this.mineOver(theirs.value, mine)));
+    // Reasons that were given here meanwhile.
+    if (unexplained(taken) < theirs.value.editsWithoutReason) this.wait();
   }
 
-  /** Own bins, saved over theirs as one more edit. */
+  /** Own bins, saved over theirs as further edits. */
   keepMine(): void {
     const theirs = this.theirsOf();
-    const history = this.historyOf();
-    if (!theirs || !history) return;
+    const mine = this.historyOf();
+    if (!theirs || !mine) return;
     this.theirsOf.set(null);
     this.etag = theirs.etag;
     this.detailOf.set(theirs.value);
-    this.change(keepMine(theirs.value, currentBins(history), crypto.randomUUID()));
+    this.change(this.mineOver(theirs.value, mine));
+  }
+
+  /** Reads the characteristic that was classed anew; undo brings the edits back that this ended. */
+  async readAnew(): Promise<void> {
+    const [address, before] = [this.address, this.historyOf()];
+    if (!address) return;
+    await this.load(address.binningId, address.characteristicId);
+    const [detail, fresh] = [this.detailOf(), this.historyOf()];
+    if (!detail || !fresh || !before || before.edits.length === 0) return;
+    this.historyOf.set(
+      reachable(
+        fresh,
+        keepMine(detail, before, 'those classed anew', () => crypto.randomUUID()),
+      ),
+    );
+  }
+
+  private mineOver(theirs: CharacteristicDetail, mine: History): History {
+    return keepMine(theirs, mine, `those of ${theirs.changedBy}`, () => crypto.randomUUID());
   }
 
   private stepTo(step: (history: History) => History): void {
@@ -188,13 +220,19 @@ export class Bench {
   private change(history: History): void {
     this.historyOf.set(history);
     if (this.stateOf() === 'stale' && this.theirsOf()) return;
-    this.stateOf.set('waiting');
-    this.schedule(saveAfter);
+    this.wait();
   }
 
-  private schedule(after: number): void {
+  private wait(): void {
+    this.stateOf.set('waiting');
+    this.waitingSince ??= performance.now();
+    this.schedule();
+  }
+
+  private schedule(): void {
     clearTimeout(this.timer);
-    this.timer = setTimeout(() => void this.save(), after);
+    const left = saveWithin - (performance.now() - (this.waitingSince ?? performance.now()));
+    this.timer = setTimeout(() => void this.save(), Math.max(0, Math.min(saveAfter, left)));
   }
 
   private save(): Promise<void> {
@@ -207,6 +245,7 @@ export class Bench {
     const { address } = this;
     if (!sent || !address) return;
     clearTimeout(this.timer);
+    this.waitingSince = null;
     this.stateOf.set('saving');
     try {
       const { value, etag } = await this.binnings.saveCharacteristic(
@@ -224,7 +263,7 @@ export class Bench {
       // What was edited while the answer was under way.
       if (this.historyOf() !== sent) {
         this.stateOf.set('waiting');
-        this.schedule(saveAfter);
+        this.schedule();
       }
     } catch (error) {
       if (this.address !== address) return;
@@ -250,6 +289,7 @@ export class Bench {
 
   private take({ value, etag }: Tagged<CharacteristicDetail>): void {
     clearTimeout(this.timer);
+    this.waitingSince = null;
     this.etag = etag;
     this.theirsOf.set(null);
     this.previewOf.set(null);

@@ -358,7 +358,7 @@ export class BenchPage {
         constraints,
         reason: answer.reason,
       });
-      await this.bench.load(this.binningId(), this.characteristicId());
+      await this.bench.readAnew();
       await this.current.reload();
     });
   }

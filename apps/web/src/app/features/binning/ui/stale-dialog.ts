@@ -20,7 +20,7 @@ export interface StaleQuestion {
 
 export type StaleAnswer = 'theirs' | 'mine';
 
-/** Somebody saved first: both states side by side, and a person says which stays. Neither is lost: the history keeps the other's edits. */
+/** Somebody saved first: both states side by side, and a person says which stays. Neither is lost: the history keeps their edits, undo keeps mine. */
 @Component({
   selector: 'ts-stale-dialog',
   changeDetection: ChangeDetectionStrategy.OnPush,
@@ -29,8 +29,8 @@ export type StaleAnswer = 'theirs' | 'mine';
     <h2 mat-dialog-title>{{ asked.by }} saved {{ asked.column }} first</h2>
     <mat-dialog-content>
       <p>
-        Saved {{ when }}, while your bins were not saved yet. Take theirs, and yours are let go; or keep yours, and theirs stay in
-        the history.
+        Saved {{ when }}, while your bins were not saved yet. Take theirs, and Undo brings yours back while you are here; or keep
+        yours with their reasons, and theirs stay in the history.
       </p>
       <div class="sides">
         @for (side of sides; track side.title) {
