@@ -130,7 +130,7 @@ describe('a sample from its file to its definition', () => {
     expect(content.outcome).toEqual({ good: ['0'], bad: ['1'], indeterminate: [], excluded: [] });
     expect(content.declined).toEqual({ values: ['declined'] });
     expect(content.columns.find(({ column }) => column === 'gender')).toMatchObject({ role: 'not used', protected: true });
-    expect(read.body.problems).toEqual([]);
+    expect(read.body.problems).toMatchObject([{ code: 'special-code-suspected', where: { column: 'bureau_score', value: '-999' } }]);
   });
 
   it('saves the draft under its tag only, and loses nothing when two people save', async () => {
@@ -387,7 +387,7 @@ describe('outcomes that cannot be fitted are blocked with their values and count
     };
     expect(await withWeight('1.5 0.5 -1 2')).toContain('negative-weight');
     expect(await withWeight('0 0')).toEqual(expect.arrayContaining([expect.stringMatching(/zero-weights/)]));
-    expect(await withWeight('1 abc')).toContain('not-numeric');
+    expect(await withWeight('1 abc')).toContain('unreadable-weight');
     expect(await withWeight('1 0 2')).toEqual([]);
   });
 });

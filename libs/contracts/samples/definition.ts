@@ -47,6 +47,8 @@ export const DefinedColumn = z.strictObject({
   /** The legal basis that the author proposes for a protected characteristic. It permits nothing: compliance does (permissions/). */
   citation: z.string().max(1000).nullable(),
   special: z.array(SpecialCode).max(50),
+  /** Suspected special codes of which somebody said that they are amounts. */
+  amounts: z.array(value).max(100).optional(),
   /** Why it is not used, or why a flag was accepted. */
   reason: z.string().max(1000).nullable(),
 });

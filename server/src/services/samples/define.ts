@@ -9,6 +9,7 @@ import type {
   SampleDefinitionContent,
 } from '@tallystone/contracts/samples/definition';
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
+import { unnamedCode } from '@tallystone/contracts/samples/special-codes';
 import type { Exclusion, GroupsBy, OutcomeDefinition, Partition } from '@tallystone/contracts/specification/types';
 import { thin } from '../../profiling/kind';
 import { type NumberReader, numberReader } from '../../reading/index';
@@ -173,6 +174,7 @@ function checkColumn(entry: DefinedColumn, profile: ColumnProfile, { reader, wei
   }
   if (role === 'characteristic' && profile.distinct === 0) say('all-missing', `${column} is missing in every row.`, where);
   checkSpecials(entry, reader, say);
+  checkSuspects(entry, profile, say);
 }
 
 function checkSpecials({ column, kind, special }: DefinedColumn, reader: NumberReader, say: Say): void {
@@ -188,7 +190,25 @@ function checkSpecials({ column, kind, special }: DefinedColumn, reader: NumberR
         say('special-twice', `${column}: the special code ${value} is listed twice (${label}).`, where);
       seen.add(String(value));
     }
+    if (label.trim() === '' || label.trim() === unnamedCode)
+      say('special-unnamed', `${column}: say what the special code ${values.join(', ')} means.`, {
+        section: 'columns',
+        column,
+        value: values.join(', '),
+      });
   }
+}
+
+/** A code that is taken for an amount moves every class and coefficient: whoever defines the sample says which it is. */
+function checkSuspects({ column, kind, role, special, amounts = [] }: DefinedColumn, profile: ColumnProfile, say: Say): void {
+  if (role !== 'characteristic' || kind !== 'numeric') return;
+  const answered = new Set([...special.flatMap(({ values }) => values.map(String)), ...amounts]);
+  for (const { value, count } of profile.specialSuspects.filter((suspect) => !answered.has(suspect.value) && !answered.has(String(Number(suspect.value)))))
+    say(
+      'special-code-suspected',
+      `${column} is ${value} in ${thin(count)} rows, which looks like a special code. Say what it means, or that it is an amount.`,
+      { section: 'columns', column, value, count },
+    );
 }
 
 function checkOutcome(draft: DraftContent, profile: ColumnProfile | undefined, say: Say): void {

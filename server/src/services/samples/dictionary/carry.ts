@@ -106,7 +106,7 @@ export function takeOver(
   const columns = draft.columns.map((column): DefinedColumn => {
     const known = kept.get(column.column);
     if (known)
-      return { ...column, role: known.role, protected: known.protected || column.protected, citation: known.citation, special: known.special, reason: known.reason };
+      return { ...column, role: known.role, protected: known.protected || column.protected, citation: known.citation, special: known.special, reason: known.reason, ...(known.amounts && { amounts: known.amounts }) };
     return taken.has(column.role) ? { ...column, role: 'not used', reason: 'Another column has this role in the earlier sample.' } : column;
   }); // prettier-ignore
   return {

@@ -1,5 +1,6 @@
 import { type ComponentFixture, TestBed } from '@angular/core/testing';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
+import type { DefinedColumn } from '@tallystone/contracts/samples/definition';
 import { ColumnEditor } from './column-editor';
 
 describe('the part of one column', () => {
@@ -43,6 +44,66 @@ describe('the part of one column', () => {
     ]);
     buttons()[0].click();
     expect(told).toEqual([profile.flags[0].values]);
+  });
+
+  describe('with special codes', () => {
+    const told: DefinedColumn[] = [];
+    const column: DefinedColumn = { column: 'amount', kind: 'numeric', role: 'characteristic', protected: false, citation: null, special: [], reason: null };
+    const text = (): string => (fixture.nativeElement as HTMLElement).querySelector('fieldset')?.textContent ?? '';
+    const press = (label: string): void => {
+      const all = [...(fixture.nativeElement as HTMLElement).querySelectorAll('button')];
+      all.find(({ textContent }) => textContent.trim() === label)?.click();
+      show(told.at(-1)!);
+    };
+    const show = (defined: DefinedColumn): void => {
+      fixture.componentRef.setInput('column', defined);
+      fixture.detectChanges();
+    };
+    const type = (place: number, typed: string): void => {
+      const input = (fixture.nativeElement as HTMLElement).querySelectorAll<HTMLInputElement>('.code input')[place];
+      input.value = typed;
+      input.dispatchEvent(new Event('change'));
+      fixture.detectChanges();
+    };
+
+    beforeEach(() => {
+      told.length = 0;
+      fixture.componentRef.setInput('editable', true);
+      fixture.componentRef.setInput('profile', { ...profile, specialSuspects: [{ value: '-999', count: 12, reason: 'Far below all others.' }] });
+      fixture.componentInstance.changed.subscribe((change) => told.push(change));
+      show(column);
+    });
+
+    it('asks for the meaning of each, and never takes an empty one for a meaning', () => {
+      press('Treat as special code');
+      expect(told.at(-1)?.special).toEqual([{ label: 'meaning to be stated', values: [-999] }]);
+      expect(text()).toContain('Say what -999 means: no definition is confirmed before.');
+      type(1, 'no bureau record');
+      show(told.at(-1)!);
+      expect(text()).not.toContain('Say what');
+      type(1, ' ');
+      expect(told.at(-1)?.special).toEqual([{ label: 'meaning to be stated', values: [-999] }]);
+    });
+
+    it('takes numbers alone as codes of numbers, and says what it did not take', () => {
+      press('Treat as special code');
+      const before = told.length;
+      for (const typed of ['0x10', '-999, abc', '', '1 000']) type(0, typed);
+      expect(told).toHaveLength(before);
+      expect(text()).toContain('A code is a number such as -999');
+      type(0, '-999, -998.5');
+      expect(told.at(-1)?.special[0].values).toEqual([-999, -998.5]);
+    });
+
+    it('lets a suspected code be an amount, and asks again', () => {
+      press('It is an amount');
+      expect(told.at(-1)?.amounts).toEqual(['-999']);
+      expect(text()).toContain('-999: an amount, as was stated.');
+      expect(text()).not.toContain('Treat as special code');
+      press('Ask again');
+      expect(told.at(-1)?.amounts).toEqual([]);
+      expect(text()).toContain('Treat as special code');
+    });
   });
 
   it('offers it to nobody who may not, and only where there is such a value', () => {

@@ -1,4 +1,4 @@
-import { ChangeDetectionStrategy, Component, computed, input, output } from '@angular/core';
+import { ChangeDetectionStrategy, Component, computed, input, linkedSignal, output } from '@angular/core';
 import { MatButtonModule } from '@angular/material/button';
 import { MatCheckboxModule } from '@angular/material/checkbox';
 import { MatFormFieldModule } from '@angular/material/form-field';
@@ -6,8 +6,10 @@ import { MatInputModule } from '@angular/material/input';
 import { MatSelectModule } from '@angular/material/select';
 import type { ColumnProfile, ColumnRole } from '@tallystone/contracts/samples/columns';
 import type { DefinedColumn, SpecialCode } from '@tallystone/contracts/samples/definition';
+import { unnamedCode } from '@tallystone/contracts/samples/special-codes';
 import { count } from '../../../ui/numbers';
 import { plain } from './findings';
+import { readListed, readNumber, writeListed } from './listed-values';
 import { ColumnFigure } from './column-figure';
 
 const roles: readonly ColumnRole[] = [
@@ -78,8 +80,8 @@ const roles: readonly ColumnRole[] = [
         @if (entry.protected) {
           <p class="ts-caption">
             Barred from every binning and fit until somebody with the role of compliance permits it, with a citation, on the
-            confirmed definition. Which attributes are protected is for the law that
-            applies to the lender and its qualified staff.
+            confirmed definition. Which attributes are protected is for the law that applies to the lender and its qualified
+            staff.
           </p>
           @if (entry.role === 'characteristic') {
             <mat-form-field>
@@ -110,20 +112,17 @@ const roles: readonly ColumnRole[] = [
               <div class="code">
                 <mat-form-field>
                   <mat-label>Code</mat-label>
-                  <input
-                    matInput
-                    [value]="special.values.join(', ')"
-                    [disabled]="!editable()"
-                    (change)="setCode(place, { values: values($event) })"
-                  />
+                  <input matInput [value]="codes(special.values)" [disabled]="!editable()" (change)="setValues(place, $event)" />
                 </mat-form-field>
                 <mat-form-field>
                   <mat-label>Meaning</mat-label>
                   <input
                     matInput
-                    [value]="special.label"
+                    placeholder="what the code stands for"
+                    [value]="isNamed(special) ? special.label : ''"
                     [disabled]="!editable()"
-                    (change)="setCode(place, { label: text($event) })"
+                    [attr.aria-invalid]="isNamed(special) ? null : true"
+                    (change)="setCode(place, { label: text($event) || unnamed })"
                   />
                 </mat-form-field>
                 @if (editable()) {
@@ -136,6 +135,11 @@ const roles: readonly ColumnRole[] = [
                     Remove
                   </button>
                 }
+                @if (refused()?.place === place) {
+                  <p class="refused" role="alert">{{ refused()?.message }}</p>
+                } @else if (!isNamed(special)) {
+                  <p class="refused">Say what {{ codes(special.values) }} means: no definition is confirmed before.</p>
+                }
               </div>
             }
             @for (suspect of suspects(); track suspect.value) {
@@ -143,6 +147,17 @@ const roles: readonly ColumnRole[] = [
                 {{ suspect.value }}: {{ suspect.reason }}
                 @if (editable()) {
                   <button matButton type="button" (click)="addCode(suspect.value)">Treat as special code</button>
+                  @if (entry.kind === 'numeric') {
+                    <button matButton type="button" (click)="setAmount(suspect.value, true)">It is an amount</button>
+                  }
+                }
+              </p>
+            }
+            @for (value of entry.amounts ?? []; track value) {
+              <p class="ts-caption">
+                {{ value }}: an amount, as was stated.
+                @if (editable()) {
+                  <button matButton type="button" (click)="setAmount(value, false)">Ask again</button>
                 }
               </p>
             }
@@ -169,6 +184,10 @@ const roles: readonly ColumnRole[] = [
     }
     .flags b {
       margin-right: 4px;
+    }
+    .refused {
+      grid-column: 1 / -1;
+      color: var(--mat-sys-error);
     }
     .code {
       display: grid;
@@ -197,6 +216,14 @@ export class ColumnEditor {
   readonly readAgain = output<readonly string[]>();
 
   protected readonly roles = roles;
+  protected readonly unnamed = unnamedCode;
+  protected readonly codes = writeListed;
+  protected readonly isNamed = ({ label }: SpecialCode): boolean => label.trim() !== '' && label !== unnamedCode;
+  /** What was typed as a code of the column that is shown, and could not be taken. */
+  protected readonly refused = linkedSignal<string, { place: number; message: string } | null>({
+    source: () => this.profile().column,
+    computation: () => null,
+  });
   protected readonly names = { stop: 'Not used:', look: 'Look:', note: 'Note:' } as const;
   protected readonly write = plain;
   protected readonly quantiles = computed(() => {
@@ -204,7 +231,8 @@ export class ColumnEditor {
     return [0.05, 0.5, 0.95].map((at) => plain(list.find((quantile) => quantile.share === at)?.value ?? NaN)).join(', ');
   });
   protected readonly suspects = computed(() => {
-    const known = new Set((this.column()?.special ?? []).flatMap(({ values }) => values.map(String)));
+    const { special = [], amounts = [] } = this.column() ?? {};
+    const known = new Set([...special.flatMap(({ values }) => values.map(String)), ...amounts]);
     return this.profile()
       .specialSuspects.filter(({ value }) => !known.has(value))
       .map((suspect) => ({ ...suspect, count: count(suspect.count) }));
@@ -224,16 +252,37 @@ export class ColumnEditor {
   protected setKind(kind: DefinedColumn['kind']): void {
     const column = this.column();
     if (!column) return;
-    const special = column.special.map((code) => ({
-      ...code,
-      values: code.values.map((value) => (kind === 'numeric' ? Number(value) : String(value))),
-    }));
+    // A text that is no number can be no code of numbers: such a code goes, rather than becoming another one.
+    const as = (value: string | number): string | number | null =>
+      kind === 'numeric' ? readNumber(String(value)) : String(value);
+    const special = column.special
+      .map((code) => ({ ...code, values: code.values.map(as).filter((value) => value !== null) }))
+      .filter(({ values }) => values.length > 0);
     this.set({ kind, special });
   }
 
   protected setCode(place: number, change: Partial<SpecialCode>): void {
     const special = (this.column()?.special ?? []).map((code, index) => (index === place ? { ...code, ...change } : code));
-    if (special[place].label.trim() !== '' && special[place].values.length > 0) this.set({ special });
+    this.refused.set(null);
+    this.set({ special });
+  }
+
+  /** Codes of numbers are numbers; what cannot be taken is told, and the code stays as it was. */
+  protected setValues(place: number, event: Event): void {
+    const values = readListed((event.target as HTMLInputElement).value);
+    const numeric = this.column()?.kind === 'numeric';
+    const taken = values?.map((value) => (numeric ? readNumber(value) : value)).filter((value) => value !== null) ?? [];
+    if (values && taken.length === values.length && taken.length > 0) this.setCode(place, { values: taken });
+    else
+      this.refused.set({
+        place,
+        message: `${numeric ? 'A code is a number such as -999, without thousands signs; several are parted by commas.' : 'Type a code; several are parted by commas, in quotes where one holds a comma.'} It stays as it was.`,
+      });
+  }
+
+  protected setAmount(value: string, isAmount: boolean): void {
+    const others = (this.column()?.amounts ?? []).filter((one) => one !== value);
+    this.set({ amounts: isAmount ? [...others, value] : others });
   }
 
   protected addCode(value: string): void {
@@ -241,22 +290,15 @@ export class ColumnEditor {
     if (!column) return;
     const values =
       value === '' ? [column.kind === 'numeric' ? -999 : 'UNKNOWN'] : [column.kind === 'numeric' ? Number(value) : value];
-    this.set({ special: [...column.special, { label: 'meaning to be stated', values }] });
+    this.set({ special: [...column.special, { label: unnamedCode, values }] });
   }
 
   protected removeCode(place: number): void {
+    this.refused.set(null);
     this.set({ special: (this.column()?.special ?? []).filter((_, index) => index !== place) });
   }
 
   protected text(event: Event): string {
     return (event.target as HTMLInputElement).value.trim();
-  }
-
-  protected values(event: Event): (number | string)[] {
-    const texts = this.text(event)
-      .split(',')
-      .map((value) => value.trim())
-      .filter((value) => value !== '');
-    return this.column()?.kind === 'numeric' ? texts.map(Number).filter((value) => Number.isFinite(value)) : texts;
   }
 }
