@@ -204,6 +204,30 @@ describe('numbers and dates', () => {
     expect(refusedSigns.body.problems[0].code).toBe('signs-equal');
   });
 
+  it('asks about thousands signs that stand only beyond what the preview looks at', async () => {
+    const text = file('amount,bad', 60_000, (row) => `${row < 3000 ? (row % 990) + 1 : `1.${(row % 800) + 100}`},${row % 2}`);
+    expect((await preview(text)).warnings).toEqual([]);
+    const [amount] = await columnsOf(text);
+    expect(amount).toMatchObject({ kind: 'numeric', numeric: { smallest: 1 } });
+    expect(amount.flags).toMatchObject([{ code: 'ambiguous-numbers', weight: 'look' }]);
+    expect(amount.flags[0].finding).toContain('each of the 57\u202f000 values with “.” has exactly three digits after it');
+    const [answered] = await columnsOf(text, { decimal: ',', thousands: '.' });
+    expect(answered).toMatchObject({ kind: 'numeric', numeric: { largest: 1899 }, flags: [] });
+  });
+
+  it.each([
+    ['a no-break blank', '\u00a0', '\u00a0'],
+    ['a narrow blank', '\u202f', '\u202f'],
+    ['a typed apostrophe', "'", "'"],
+    ['a typeset apostrophe', '\u2019', "'"],
+  ])('proposes %s between thousands beside a decimal point', async (_, sign, proposed) => {
+    const text = file('amount,bad', 50, (row) => `${row + 1}${sign}000.50,${row % 2}`);
+    const { choices, columns } = await preview(text);
+    expect(choices).toMatchObject({ decimal: '.', thousands: proposed });
+    expect(columns[0]).toMatchObject({ kind: 'numeric', against: null });
+    expect((await columnsOf(text))[0]).toMatchObject({ kind: 'numeric', numeric: { smallest: 1000.5, largest: 50_000.5 } });
+  });
+
   it('shows numbers of mixed spelling with examples', async () => {
     const [amount] = await columnsOf(
       file('amount;bad', 60, (row) => `${row % 2 === 0 ? '1,5' : '1.234,56'};${row % 2}`).replace('1.234,56', '12.5'),

@@ -38,6 +38,7 @@ export const columnFlags = [
   'unreadable-numbers',
   'numbers-as-text',
   'mixed-numbers',
+  'ambiguous-numbers',
   'special-code-suspected',
   'doubtful-dates',
 ] as const;

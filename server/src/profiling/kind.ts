@@ -1,6 +1,6 @@
 import type { ColumnFlag } from '@tallystone/contracts/samples/columns';
 import type { ColumnKind } from '@tallystone/contracts/samples/reading';
-import { type NumberFault, type NumberReader, isNumberSomehow, judgeFormat, numberReader } from '../reading/index';
+import { type NumberFault, type NumberFormat, type NumberReader, ThousandsQuestion, isNumberSomehow, judgeFormat, numberReader } from '../reading/index';
 
 /** Rows of one distinct text of a column that is not missing. */
 export interface Counted {
@@ -46,7 +46,10 @@ export function judgeKind(values: readonly Counted[], reader: NumberReader): Jud
   if (total === 0) return { kind: 'categorical', against: null, flags: [] };
   const notNumbers = values.filter(({ text }) => Number.isNaN(reader.read(text)));
   const numeric = judgeNumbers(total, notNumbers, reader);
-  if (numeric !== null) return numeric;
+  if (numeric !== null) {
+    const question = thousandsFlag(reader.format, (ask) => values.every(({ text, count }) => Number.isNaN(reader.read(text)) || ask(text, count)));
+    return question === null ? numeric : { ...numeric, flags: [...numeric.flags, question] };
+  }
   const odd = sum(notNumbers);
   const notDates = values.filter(({ text }) => !isIsoDate(text));
   const oddDates = sum(notDates);
@@ -73,6 +76,25 @@ export function judgeNumbers(total: number, notNumbers: readonly Counted[], read
     };
   }
   return null;
+}
+
+/**
+ * What is to be asked of a numeric column whose decimal sign may be its thousands sign. Where a thousands sign is stated, the question is answered
+ * for the whole file.
+ * @param each gives every number as it is spelled and its rows, as long as there is a question
+ */
+export function thousandsFlag(format: NumberFormat, each: (ask: (text: string, count: number) => boolean) => boolean): ColumnFlag | null {
+  if (format.thousands !== null) return null;
+  const question = new ThousandsQuestion(format.decimal);
+  if (!each((text, count) => question.add(text, count))) return null;
+  const other = question.other();
+  if (other === null) return null;
+  const { text } = question.examples[0];
+  const listed = question.examples.map((one) => `“${one.text}” ${thin(one.count)}×`).join(', ');
+  const finding =
+    `“${text}” is read as ${numberReader(format).read(text)} and may be ${thin(numberReader(other).read(text))}: each of the ${thin(question.rows)} values with “${format.decimal}” has exactly three digits after it (${listed}). ` +
+    `If it parts thousands, read the file again with “${format.decimal}” as thousands sign and “${other.decimal}” as decimal sign; if these are decimals, accept this.`;
+  return { code: 'ambiguous-numbers', weight: 'look', finding };
 }
 
 /** A column of texts that look like something else: numbers written otherwise, dates in an order that has to be asked for. */

@@ -5,7 +5,7 @@ import { leastNumber, textBase } from '../reading/plain/column-coder';
 import { type NumberStyle, mostWhole, spell, spelled, valueOf, wholeOf } from '../reading/plain/number-style';
 import type { UnpackedSegment } from '../storage/packedSegment';
 import type { CountedNumbers } from './counted-numbers';
-import { type Counted, judgeNumbers } from './kind';
+import { type Counted, judgeNumbers, thousandsFlag } from './kind';
 import { type OutcomeCodes, leakageOfNumbers } from './leakage';
 import { PersonalValues } from './personal-values';
 import { describeColumn, mostListed } from './profile-column';
@@ -50,6 +50,12 @@ export function profileNumbers(
   const total = kept.counts.reduce((sum, one) => sum + one, 0) + others.reduce((sum, { count }) => sum + count, 0);
   const judged = judgeNumbers(total, notNumbers, reader);
   if (judged === null) return null;
+  const question = thousandsFlag(choices, (ask) => {
+    for (const { text, count, value } of others) if (!Number.isNaN(value) && !ask(text, count)) return false;
+    for (let place = 0; place < kept.length; place++)
+      if (!ask(spell(kept.wholes[place], style), kept.counts[place])) return false;
+    return true;
+  });
   // Packed numbers have fewer digits than any of what is looked for.
   const values = new PersonalValues();
   for (const { text, count } of others) values.add(text, count);
@@ -62,7 +68,7 @@ export function profileNumbers(
     rows: joined.rows,
     missingTokens,
     kind: 'numeric',
-    kindFlags: judged.flags,
+    kindFlags: question === null ? judged.flags : [...judged.flags, question],
     distinct: kept.length + others.length,
     mostFrequent: mostFrequentNumbers(kept, style, others),
     numbers,

@@ -55,7 +55,7 @@ export function personalColumn(
     distinct++;
     if (emailAddress.test(text)) emails++;
     if (/^[+-]?\d+$/.test(text)) wholeNumbers++;
-    if (/^[+-]?\d[\d.,\s']*([eE][+-]?\d+)?$/.test(text)) numbers++;
+    if (/^[+-]?\d[\d.,\s'’]*([eE][+-]?\d+)?$/.test(text)) numbers++;
   });
   if (distinct === 0) return null;
   const spoken = words(name);

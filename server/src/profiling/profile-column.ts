@@ -216,6 +216,7 @@ function personalValuesFlag(found: readonly PersonalValuesFound[]): ColumnFlag {
 const plainAmount = /^-?[\d.,]+$/;
 
 const unexampled: Partial<Record<ColumnFlag['code'], string>> = {
+  'ambiguous-numbers': 'Every number with the decimal sign has exactly three digits after it: the sign may part thousands. If it does, read the file again with it as thousands sign; otherwise accept this.',
   'like-categories': 'Some of its values differ only in case or in blanks and signs between words.',
   'doubtful-dates': 'Some of its values are no dates, or doubtful ones.',
   'mixed-numbers': 'Numbers are written in more than one way: write them in one way in the file and bring it in again, or do not use the column.',

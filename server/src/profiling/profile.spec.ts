@@ -86,6 +86,19 @@ describe('what the quality table says of a column', () => {
     expect(codes([...many(20, String), ...many(9, (k) => `w${k}`)])).toContain('numbers-as-text');
   });
 
+  it('asks about a decimal sign that may part thousands, by all texts of the column', () => {
+    const texts = [...many(3000, (k) => String((k % 990) + 1)), ...many(57_000, (k) => `1.${(k % 800) + 100}`)];
+    const found = profile(texts);
+    expect(found.flags.map(({ code, weight }) => [code, weight])).toEqual([['ambiguous-numbers', 'look']]);
+    expect(found.flags[0].finding).toContain('“1.100” is read as 1.1 and may be 1\u202f100: each of the 57\u202f000 values');
+    expect(found.flags[0].finding).toContain('(“1.100” 72×, “1.101” 72×, “1.102” 72×)');
+    expect(found.flags[0].finding).toContain('read the file again with “.” as thousands sign');
+    // One value with another number of decimals, or below one, is an answer; so is a thousands sign that is stated.
+    for (const one of ['0.500', '2.5', '1200']) expect(codes([...texts, one]), one).toEqual([]);
+    expect(codes(texts, 'c', { ...choices, decimal: ',', thousands: '.' })).toEqual([]);
+    expect(codes(many(400, (k) => `0.${k + 100}`))).toEqual([]);
+  });
+
   it('offers what may mean missing among numbers, but no number in another spelling', () => {
     const found = profile([...many(196, String), 'NaN', '0x10', 'NaN', '1,5']);
     expect(found.flags.find(({ code }) => code === 'unreadable-numbers')?.values).toEqual(['NaN', '0x10']);

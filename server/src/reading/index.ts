@@ -16,6 +16,7 @@ export {
   isNumberSomehow,
   judgeFormat,
   numberReader,
+  ThousandsQuestion,
   type FormatJudgement,
   type NumberFault,
   type NumberFormat,

@@ -77,4 +77,30 @@ describe('judging a column', () => {
     const mixed = judgeFormat(['1.5', '2.5', '3,5'], [10, 10, 1]);
     expect(mixed).toMatchObject({ format: { decimal: '.', thousands: null }, numbers: 20, others: 1, examples: ['3,5'] });
   });
+
+  it('asks about a decimal sign that may part thousands, and only then', () => {
+    const asked = (...texts: string[]): boolean => judgeFormat(texts).ambiguous !== null;
+    expect(asked('1.100', '990', '0', '-12.345')).toBe(true);
+    // Codes in nines are no amounts.
+    expect(asked('1.100', '-9999')).toBe(true);
+    for (const other of ['0.123', '1.5', '1.1234', '1234.567', '01.234', '1.234.567', '1500', '1.234e3'])
+      expect(asked('1.100', other), other).toBe(false);
+    expect(asked('990', '12')).toBe(false);
+    expect(judgeFormat(['1,100', '990']).ambiguous).toEqual({ decimal: '.', thousands: ',' });
+  });
+
+  it('knows blanks that do not break and apostrophes between thousands, with either decimal sign', () => {
+    for (const sign of ['\u00a0', '\u202f', "'", '\u2019'])
+      for (const decimal of ['.', ','] as const) {
+        const texts = ['1', '12', '123'].map((whole) => `${whole}${sign}000${decimal}50`);
+        const { format, numbers } = judgeFormat(texts);
+        // Typeset or typed, it is one sign.
+        expect(format).toEqual({ decimal, thousands: sign === '\u2019' ? "'" : sign });
+        expect([numbers, ...texts.map((text) => numberReader(format).read(text))]).toEqual([3, 1000.5, 12_000.5, 123_000.5]);
+      }
+    const swiss = numberReader({ decimal: '.', thousands: "'" });
+    expect(swiss.read("1’000'000.5")).toBe(1_000_000.5);
+    for (const text of ['1’00.5', '’100', '1’000’', "1'’000"]) expect(swiss.read(text), text).toBeNaN();
+    expect(numberReader({ decimal: '.', thousands: null }).read('1’000')).toBeNaN();
+  });
 });

@@ -100,6 +100,30 @@ describe('the profile of a stored column', () => {
     expect(quick).toBeGreaterThan(300);
   });
 
+  it('asks alike about a decimal sign that may part thousands', () => {
+    const thousandths = fc.integer({ min: 1000, max: 999_999 }).map((value) => (value / 1000).toFixed(3));
+    const small = fc.integer({ min: -999, max: 999 }).map(String);
+    const odd = fc.constantFrom('', 'NA', '-999', 'x', '1500', '0.123', '2.5', '+1.234', '007', '9999');
+    const cases = fc.array(fc.oneof({ weight: 30, arbitrary: thousandths }, { weight: 10, arbitrary: small }, { weight: 3, arbitrary: odd }), { minLength: 5, maxLength: 40 });
+    let asked = 0;
+    let quick = 0;
+    fc.assert(
+      fc.property(cases, fc.integer({ min: 3, max: 60 }), (values, segmentRows) => {
+        const contents = stored(values, segmentRows);
+        const expected = byTexts('c', contents, null);
+        const found = profileNumbers('c', 0, contents.map((content) => unpack(inflateSegment(content))), choices, null);
+        if (found) {
+          quick++;
+          expect(found).toEqual(expected);
+          if (found.flags.some(({ code }) => code === 'ambiguous-numbers')) asked++;
+        }
+      }),
+      { numRuns: 500 },
+    );
+    expect(asked).toBeGreaterThan(50);
+    expect(quick - asked).toBeGreaterThan(50);
+  }); // prettier-ignore
+
   it('is the same where numbers lie far apart, and with a comma', () => {
     const amounts = Array.from({ length: 5000 }, (_, row) => (((row * 7_919_777) % 900_000_000) / 100).toFixed(2));
     expect(profileNumbers('c', 0, stored(amounts, 900).map((content) => unpack(inflateSegment(content))), choices, null)).toEqual(

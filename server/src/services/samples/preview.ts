@@ -4,7 +4,7 @@ import { type CsvError, parse } from 'csv-parse/sync';
 import type { Context } from '../../context';
 import { dateReader } from '../../reading/dates';
 import { decoderOf } from '../../reading/encodings';
-import { judgeFormat, numberReader, readSegments, sniff } from '../../reading/index';
+import { numberReader, readSegments, sniff } from '../../reading/index';
 import { readChunks } from '../../storage/rawFiles';
 import { type DateEvidence, dateEvidence, dateQuestion, dateReason, decidedOrder } from './date-evidence';
 import { DoubtfulLines } from './doubtful-lines';
@@ -173,20 +173,13 @@ function judgeColumn(column: string, position: number, rows: Table['rows'], choi
     if (cell !== undefined && !choices.missing.includes(cell)) counts.set(cell, (counts.get(cell) ?? 0) + 1);
   }
   const values: Counted[] = [...counts].map(([text, count]) => ({ text, count }));
-  const { kind, against } = judgeKind(values, numberReader(choices));
-  const texts = values.map(({ text }) => text);
-  const judged = judgeFormat(texts);
+  const { kind, against, flags } = judgeKind(values, numberReader(choices));
+  const where = { column, position: position + 1 };
   let warning: ProblemItem | null = null;
-  if (against !== null)
-    warning = { code: 'doubtful-column', message: `${column}: ${against}`, where: { column, position: position + 1 } };
-  else if (kind === 'numeric' && judged.ambiguous && texts.some((text) => /[.,]/.test(text))) {
-    const example = texts.find((text) => /[.,]/.test(text)) ?? '';
-    const as = numberReader(choices).read(example);
-    warning = {
-      code: 'ambiguous-numbers',
-      message: `${column}: “${example}” is read as ${as}. Confirm the decimal and thousands signs.`,
-      where: { column, position: position + 1 },
-    };
+  if (against !== null) warning = { code: 'doubtful-column', message: `${column}: ${against}`, where };
+  else {
+    const question = flags.find(({ code }) => code === 'ambiguous-numbers');
+    if (question) warning = { code: question.code, message: `${column}: ${question.finding}`, where };
   }
   return { column, kind, against, warning };
 }

@@ -96,6 +96,7 @@ const flagWords: Partial<Record<ColumnProfile['flags'][number]['code'], string>>
   'unreadable-numbers': 'no numbers',
   'numbers-as-text': 'numbers as text',
   'mixed-numbers': 'mixed numbers',
+  'ambiguous-numbers': 'thousands?',
   'doubtful-dates': 'dates?',
 };
 

@@ -31,6 +31,7 @@ const words: Partial<Record<QualityFlag['code'], string>> = {
   'unreadable-numbers': 'Values that are no numbers',
   'numbers-as-text': 'Numbers as text',
   'mixed-numbers': 'Numbers written in more than one way',
+  'ambiguous-numbers': 'Decimals or thousands?',
   'doubtful-dates': 'Doubtful dates',
 };
 
