@@ -49,7 +49,10 @@ export const ColumnFlag = z.object({
   weight: z.enum(['stop', 'look', 'note']),
   /** One sentence with its number. */
   finding: z.string(),
-  /** Of `unreadable-numbers`: texts that may mean "missing", the most frequent first, at most 20. Profiles from before have none. */
+  /**
+   * Of `unreadable-numbers`, and of `numbers-as-text` where words stand among numbers: texts that may mean "missing" or be special codes, the most
+   * frequent first, at most 20. Profiles from before have none.
+   */
   values: z.array(z.string()).optional(),
 });
 export type ColumnFlag = z.infer<typeof ColumnFlag>;

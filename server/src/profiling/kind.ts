@@ -141,7 +141,7 @@ function doubtful(values: readonly Counted[], total: number, numbers: number, re
   if (numbers * 2 >= total) {
     const texts = values.filter(({ text }) => Number.isNaN(reader.read(text)));
     const finding = `${thin(numbers)} of ${thin(total)} values are numbers, the others are not: ${listed(texts)}.`;
-    return { against: finding, flags: [{ code: 'numbers-as-text', weight: 'look', finding }] };
+    return { against: finding, flags: [{ code: 'numbers-as-text', weight: 'look', finding, values: mayBeMissing(texts) }] };
   }
   return { against: null, flags: [] };
 }

@@ -85,14 +85,22 @@ describe('the part of one column', () => {
       expect(told.at(-1)?.special).toEqual([{ label: 'meaning to be stated', values: [-999] }]);
     });
 
-    it('takes numbers alone as codes of numbers, and says what it did not take', () => {
+    it('takes numbers and words as codes of numbers, and says what it did not take', () => {
       press('Treat as special code');
       const before = told.length;
-      for (const typed of ['0x10', '-999, abc', '', '1 000']) type(0, typed);
+      for (const typed of ['1’000', '-999, 1 000', '', '1 000']) type(0, typed);
       expect(told).toHaveLength(before);
       expect(text()).toContain('A code is a number such as -999');
-      type(0, '-999, -998.5');
-      expect(told.at(-1)?.special[0].values).toEqual([-999, -998.5]);
+      type(0, '-999, -998.5, NTC');
+      expect(told.at(-1)?.special[0].values).toEqual([-999, -998.5, 'NTC']);
+    });
+
+    it('offers words among numbers as codes, each to be named', () => {
+      press('Take NaN, Inf, 0x10, 1e309 and 1 more for special codes');
+      expect(told.at(-1)?.kind).toBe('numeric');
+      expect(told.at(-1)?.special.map(({ values }) => values)).toEqual([['NaN'], ['Inf'], ['0x10'], ['1e309'], ['-Inf']]);
+      expect(text()).toContain('Say what NaN means');
+      expect((fixture.nativeElement as HTMLElement).querySelector('.flags')?.textContent).not.toContain('for special codes');
     });
 
     it('lets a suspected code be an amount, and asks again', () => {

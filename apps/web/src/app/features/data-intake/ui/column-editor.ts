@@ -43,6 +43,11 @@ const roles: readonly ColumnRole[] = [
                 Read again with {{ tokens(flag.values) }} as missing
               </button>
             }
+            @if (column() && editable() && nameable(flag.values).length > 0) {
+              <button matButton type="button" (click)="nameAsCodes(nameable(flag.values))">
+                Take {{ tokens(nameable(flag.values)) }} for special codes
+              </button>
+            }
           </li>
         }
       </ul>
@@ -69,7 +74,7 @@ const roles: readonly ColumnRole[] = [
         <mat-form-field>
           <mat-label>Values are</mat-label>
           <mat-select [value]="entry.kind" [disabled]="!editable() || profile().hashed" (selectionChange)="setKind($event.value)">
-            <mat-option value="numeric" [disabled]="profile().kind !== 'numeric'">numeric</mat-option>
+            <mat-option value="numeric" [disabled]="!maybeNumeric()">numeric</mat-option>
             <mat-option value="categorical">categorical</mat-option>
             <mat-option value="date" [disabled]="profile().kind !== 'date'">date</mat-option>
           </mat-select>
@@ -248,17 +253,32 @@ export class ColumnEditor {
     if (column) this.changed.emit({ ...column, ...change });
   }
 
-  /** Codes follow the kind: numbers for numbers, texts for categories. */
+  /** Numbers, or numbers among which there are codes in words. */
+  protected readonly maybeNumeric = computed(() => {
+    const { kind, flags } = this.profile();
+    return kind === 'numeric' || flags.some(({ code, values }) => code === 'numbers-as-text' && values?.length);
+  });
+
+  /** Words among numbers that are no special codes yet, without blanks, which can be missing only. */
+  protected nameable(values: readonly string[] = []): string[] {
+    const known = new Set((this.column()?.special ?? []).flatMap((code) => code.values.map(String)));
+    return values.filter((value) => value.trim() !== '' && codeOfNumbers(value) === value && !known.has(value));
+  }
+
+  /** Each becomes a code of its own, whose meaning is asked for, in a column of numbers. */
+  protected nameAsCodes(values: readonly string[]): void {
+    const column = this.column();
+    if (!column) return;
+    const special = values.map((value) => ({ label: unnamedCode, values: [value] }));
+    this.set({ kind: 'numeric', special: [...column.special, ...special] });
+  }
+
+  /** Codes follow the kind: texts for categories, numbers for numbers, where words stay words. */
   protected setKind(kind: DefinedColumn['kind']): void {
     const column = this.column();
     if (!column) return;
-    // A text that is no number can be no code of numbers: such a code goes, rather than becoming another one.
-    const as = (value: string | number): string | number | null =>
-      kind === 'numeric' ? readNumber(String(value)) : String(value);
-    const special = column.special
-      .map((code) => ({ ...code, values: code.values.map(as).filter((value) => value !== null) }))
-      .filter(({ values }) => values.length > 0);
-    this.set({ kind, special });
+    const as = (value: string | number): string | number => (kind === 'numeric' ? codeOfNumbers(String(value)) : null) ?? String(value);
+    this.set({ kind, special: column.special.map((code) => ({ ...code, values: code.values.map(as) })) });
   }
 
   protected setCode(place: number, change: Partial<SpecialCode>): void {
@@ -271,12 +291,12 @@ export class ColumnEditor {
   protected setValues(place: number, event: Event): void {
     const values = readListed((event.target as HTMLInputElement).value);
     const numeric = this.column()?.kind === 'numeric';
-    const taken = values?.map((value) => (numeric ? readNumber(value) : value)).filter((value) => value !== null) ?? [];
+    const taken = values?.map((value) => (numeric ? codeOfNumbers(value) : value)).filter((value) => value !== null) ?? [];
     if (values && taken.length === values.length && taken.length > 0) this.setCode(place, { values: taken });
     else
       this.refused.set({
         place,
-        message: `${numeric ? 'A code is a number such as -999, without thousands signs; several are parted by commas.' : 'Type a code; several are parted by commas, in quotes where one holds a comma.'} It stays as it was.`,
+        message: `${numeric ? 'A code is a number such as -999, without thousands signs, or a word such as NTC; several are parted by commas.' : 'Type a code; several are parted by commas, in quotes where one holds a comma.'} It stays as it was.`,
       });
   }
 
@@ -301,4 +321,11 @@ export class ColumnEditor {
   protected text(event: Event): string {
     return (event.target as HTMLInputElement).value.trim();
   }
+}
+
+/** A code among numbers: a number, or a word; null for what only looks like a number, which could mean two. */
+function codeOfNumbers(text: string): number | string | null {
+  const number = readNumber(text);
+  if (number !== null) return number;
+  return /^[\d\s.,'’+\u2212-]*$/.test(text) ? null : text;
 }
