@@ -210,6 +210,16 @@ describe('a sample from its file to its definition', () => {
     expect(stepOf('hold-out')).toMatchObject({ out: rows, outGoods: goods, outBads: bads });
     expect(stepOf('out-of-time')).toMatchObject({ out: partitions.outOfTime.rows, outGoods: null, outBads: null });
     expect(stepOf('declined')).toMatchObject({ out: declined, outGoods: null, outBads: null });
+    expect(waterfall.at(-1)).toMatchObject({ leftGoods: partitions.development.goods, leftBads: partitions.development.bads });
+    for (let place = 1; place < waterfall.length; place++) {
+      expect(waterfall[place].leftGoods).toBe(waterfall[place - 1].leftGoods - (waterfall[place].outGoods ?? 0));
+      expect(waterfall[place].leftBads).toBe(waterfall[place - 1].leftBads - (waterfall[place].outBads ?? 0));
+    }
+    // Covered, what is left counts nobody of out-of-time from the first step on: all that is told elsewhere, and nothing beside it.
+    const outside = (what: 'outGoods' | 'outBads') =>
+      waterfall.reduce((sum: number, step: { kind: string; outGoods: number | null; outBads: number | null }) => sum + (step[what] ?? 0), 0);
+    expect(waterfall[0].leftGoods).toBe(outside('outGoods') + partitions.development.goods);
+    expect(waterfall[0].leftBads).toBe(outside('outBads') + partitions.development.bads);
     expect(partitions.outOfTime).toMatchObject({ covered: true, bads: null, badRate: null });
     expect(partitions.outOfTime.rows).toBeGreaterThan(0);
     expect(declined).toBeGreaterThan(0);
@@ -389,5 +399,27 @@ describe('outcomes that cannot be fitted are blocked with their values and count
     expect(await withWeight('0 0')).toEqual(expect.arrayContaining([expect.stringMatching(/zero-weights/)]));
     expect(await withWeight('1 abc')).toContain('unreadable-weight');
     expect(await withWeight('1 0 2')).toEqual([]);
+  });
+
+  it('weights beside the bad rate of the rows: where bads were sampled more often the two differ', async () => {
+    // Every third is bad and stands for one applicant, every good for four.
+    const { path, etag, content } = await draftOf(
+      file(
+        twenty((row) => (row % 3 === 0 ? '1' : '0')),
+        '1 4 4',
+      ),
+    );
+    const columns = content.columns.map((column) => (column.column === 'w' ? { ...column, role: 'weight' as const } : column));
+    await modeller
+      .put(`${path}/draft`)
+      .set('If-Match', etag)
+      .send({ ...content, columns })
+      .expect(200);
+    const { body } = await modeller.post(`${path}/draft/check`).expect(200);
+    expect(body.problems).toEqual([]);
+    const { development } = body.counts.partitions;
+    expect(development.weight).toBe(development.bads + 4 * development.goods);
+    expect(development.weightedBadRate).toBeCloseTo(development.bads / development.weight, 12);
+    expect(development.weightedBadRate).toBeLessThan(development.badRate / 2);
   });
 });

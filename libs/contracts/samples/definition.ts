@@ -132,6 +132,8 @@ export const PartitionCounts = z.object({
   weight: z.number(),
   /** bads / (goods + bads), null without either. */
   badRate: z.number().nullable(),
+  /** Weight of the bads / weight of goods and bads; left out without a weight, and where a definition was confirmed before this was counted. */
+  weightedBadRate: z.number().nullable().optional(),
 });
 export type PartitionCounts = z.infer<typeof PartitionCounts>;
 
@@ -144,12 +146,13 @@ export const CoveredCounts = z.object({
   indeterminates: z.int().nullable(),
   weight: z.number().nullable(),
   badRate: z.number().nullable(),
+  weightedBadRate: z.number().nullable().optional(),
 });
 export type CoveredCounts = z.infer<typeof CoveredCounts>;
 
 /**
  * One step of the waterfall from the file down to development: what went out, and what is left after it. `left` of the step before minus
- * `out` is `left`, exactly.
+ * `out` is `left`, exactly; so are goods and bads, where those of a step that tells none count as 0.
  */
 export const WaterfallStep = z.object({
   kind: z.enum(['source', 'exclusion', 'outcome', 'declined', 'out-of-time', 'hold-out', 'development']),
@@ -159,6 +162,12 @@ export const WaterfallStep = z.object({
   outGoods: z.int().nullable(),
   outBads: z.int().nullable(),
   left: z.int(),
+  /**
+   * Goods and bads among the rows that are left, without those of out-of-time while it is covered: nothing tells them, nor any difference. Left
+   * out where a definition was confirmed before this was counted.
+   */
+  leftGoods: z.int().optional(),
+  leftBads: z.int().optional(),
 });
 export type WaterfallStep = z.infer<typeof WaterfallStep>;
 

@@ -7,7 +7,7 @@ import { ReplayError, type ReplayProblem } from '../replay/problems';
 import type { SourceColumn } from '../replay/source';
 import { type IndeterminateCase, indeterminateCases } from '../replay/indeterminates';
 import { type OutcomeReader, TOO_FEW_MONTHS, outcomeReader } from '../replay/outcome';
-import { GOOD, HOLD_OUT, OUT_OF_TIME, type Prepared } from '../replay/types';
+import { BAD, DEVELOPMENT, GOOD, HOLD_OUT, OUT_OF_TIME, type Prepared } from '../replay/types';
 import type { Task } from './task';
 
 export interface PreparePayload {
@@ -60,10 +60,16 @@ function describe(
     if (rule > 0 && reader.says(row) === GOOD) goodsOut[rule - 1]++;
   });
 
-  const waterfall: WaterfallStep[] = [
-    { kind: 'source', label: 'Rows of the file', out: 0, outGoods: null, outBads: null, left: prepared.rows },
-  ];
+  const byOutcome = (place: number): boolean => place >= content.exclusions.length;
+  // Rows that the outcome excludes, and declined ones, are neither good nor bad.
+  const parts = [counts.development, counts.holdOut, counts.outOfTime];
+  const known = (partGoods: number, what: 'goods' | 'bads'): number => parts.reduce((sum, part) => sum + part[what], partGoods);
+  let leftGoods = known(goodsOut.reduce((sum, goods, place) => sum + (byOutcome(place) ? 0 : goods), 0), 'goods');
+  let leftBads = known(counts.excluded.reduce((sum, { bads }, place) => sum + (byOutcome(place) ? 0 : bads), 0), 'bads');
   let left = prepared.rows;
+  const waterfall: WaterfallStep[] = [
+    { kind: 'source', label: 'Rows of the file', out: 0, outGoods: 0, outBads: 0, left, leftGoods, leftBads },
+  ];
   const step = (
     kind: WaterfallStep['kind'],
     label: string,
@@ -72,39 +78,50 @@ function describe(
     outBads: number | null,
   ): void => {
     left -= out;
-    waterfall.push({ kind, label, out, outGoods, outBads, left });
+    leftGoods -= outGoods ?? 0;
+    leftBads -= outBads ?? 0;
+    waterfall.push({ kind, label, out, outGoods, outBads, left, leftGoods, leftBads });
   };
   counts.excluded.forEach(({ reason, rows, bads }, place) => {
-    const byOutcome = place >= content.exclusions.length;
-    step(
-      byOutcome ? 'outcome' : 'exclusion',
-      byOutcome ? 'Excluded by outcome' : reason,
-      rows,
-      byOutcome ? null : goodsOut[place],
-      byOutcome ? null : bads,
-    );
+    if (byOutcome(place)) step('outcome', 'Excluded by outcome', rows, 0, 0);
+    else step('exclusion', reason, rows, goodsOut[place], bads);
   });
   if (content.declined) step('declined', 'Declined: outcome not known', counts.declined, null, null);
-  const known = (code: number) => (code === OUT_OF_TIME ? counts.outOfTime : counts.holdOut);
-  step('out-of-time', 'Out-of-time', known(OUT_OF_TIME).rows, known(OUT_OF_TIME).goods, known(OUT_OF_TIME).bads);
-  step('hold-out', 'Hold-out', known(HOLD_OUT).rows, known(HOLD_OUT).goods, known(HOLD_OUT).bads);
-  waterfall.push({ kind: 'development', label: 'Development', out: 0, outGoods: null, outBads: null, left });
-  if (left !== counts.development.rows)
-    throw new Error(`The waterfall leaves ${left} rows and development has ${counts.development.rows}`);
+  step('out-of-time', 'Out-of-time', counts.outOfTime.rows, counts.outOfTime.goods, counts.outOfTime.bads);
+  step('hold-out', 'Hold-out', counts.holdOut.rows, counts.holdOut.goods, counts.holdOut.bads);
+  step('development', 'Development', 0, 0, 0);
+  const { development } = counts;
+  if (left !== development.rows || leftGoods !== development.goods || leftBads !== development.bads)
+    throw new Error(`The waterfall leaves ${left} rows (${leftGoods} good, ${leftBads} bad), and development has ${development.rows} (${development.goods}, ${development.bads})`);
 
   const rated = ({ goods, bads }: { goods: number; bads: number }) => ({ goods, bads, badRate: badRate(goods, bads) });
-  const told = (part: ResultCounts['development']) => ({ ...part, badRate: badRate(part.goods, part.bads) });
+  const told = (part: ResultCounts['development'], code: number) => ({
+    ...part,
+    badRate: badRate(part.goods, part.bads),
+    ...(prepared.weights && { weightedBadRate: weightedBadRate(prepared, prepared.weights, code) }),
+  });
   return {
     waterfall,
     partitions: {
-      development: told(counts.development),
-      holdOut: told(counts.holdOut),
-      outOfTime: { covered: false, ...told(counts.outOfTime) },
+      development: told(counts.development, DEVELOPMENT),
+      holdOut: told(counts.holdOut, HOLD_OUT),
+      outOfTime: { covered: false, ...told(counts.outOfTime, OUT_OF_TIME) },
     },
     declined: counts.declined,
     byRule: countRule(content, prepared, reader),
     sensitivity: cases.map((entry) => ({ ...entry, development: rated(entry.development), holdOut: rated(entry.holdOut) })),
   };
+}
+
+/** Where bads were sampled more often than goods, only this is the bad rate of those who applied. */
+function weightedBadRate({ partition, outcome }: Prepared, weights: Float64Array, code: number): number | null {
+  let [goods, bads] = [0, 0];
+  for (let row = 0; row < outcome.length; row++) {
+    if (partition[row] !== code) continue;
+    if (outcome[row] === GOOD) goods += weights[row];
+    else if (outcome[row] === BAD) bads += weights[row];
+  }
+  return badRate(goods, bads);
 }
 
 /** What each part of an outcome by rule takes; null where the outcome is by values. */

@@ -1,4 +1,4 @@
-import type { DefinitionCounts } from '@tallystone/contracts/samples/definition';
+import type { DefinitionCounts, WaterfallStep } from '@tallystone/contracts/samples/definition';
 
 /** The same counts with the outcome of out-of-time withheld; its number of rows is told. */
 export function covered(counts: DefinitionCounts): DefinitionCounts {
@@ -6,7 +6,7 @@ export function covered(counts: DefinitionCounts): DefinitionCounts {
   if (outOfTime.rows === 0) return counts;
   return {
     ...counts,
-    waterfall: counts.waterfall.map((step) => (step.kind === 'out-of-time' ? { ...step, outGoods: null, outBads: null } : step)),
+    waterfall: coveredWaterfall(counts),
     partitions: {
       ...counts.partitions,
       outOfTime: {
@@ -17,7 +17,21 @@ export function covered(counts: DefinitionCounts): DefinitionCounts {
         indeterminates: null,
         weight: null,
         badRate: null,
+        ...('weightedBadRate' in outOfTime && { weightedBadRate: null }),
       },
     },
   };
+}
+
+/**
+ * The waterfall as if nobody of out-of-time had an outcome: goods and bads of what is left count the other rows alone, from the first step on, so
+ * that no difference between two steps tells what its own step does not.
+ */
+function coveredWaterfall({ waterfall, partitions: { outOfTime } }: DefinitionCounts): WaterfallStep[] {
+  const place = waterfall.findIndex(({ kind }) => kind === 'out-of-time');
+  return waterfall.map((step, index) => {
+    const hidden = index === place ? { ...step, outGoods: null, outBads: null } : step;
+    if (index >= place || step.leftGoods === undefined || step.leftBads === undefined) return hidden;
+    return { ...hidden, leftGoods: step.leftGoods - (outOfTime.goods ?? 0), leftBads: step.leftBads - (outOfTime.bads ?? 0) };
+  });
 }

@@ -1,13 +1,13 @@
 import type { ColumnTest, DefinitionCounts } from '@tallystone/contracts/samples/definition';
 import { describe, expect, it } from 'vitest';
-import { badRateOut, countsFinding, plain, ruleParts, samplesFinding, sensitivityFinding, waterfallFinding } from './findings';
+import { badRateLeft, badRateOut, countsFinding, plain, ruleParts, samplesFinding, sensitivityFinding, waterfallFinding } from './findings';
 import { readListed, writeListed } from './listed-values';
 import { conditionOf, testWith, valueOf } from './exclusion-test';
 
 const counts: DefinitionCounts = {
   waterfall: [
-    { kind: 'source', label: 'Rows of the file', out: 0, outGoods: null, outBads: null, left: 1000 },
-    { kind: 'exclusion', label: 'staff loans', out: 20, outGoods: 15, outBads: 5, left: 980 },
+    { kind: 'source', label: 'Rows of the file', out: 0, outGoods: null, outBads: null, left: 1000, leftGoods: 800, leftBads: 150 },
+    { kind: 'exclusion', label: 'staff loans', out: 20, outGoods: 15, outBads: 5, left: 980, leftGoods: 785, leftBads: 145 },
     { kind: 'development', label: 'Development', out: 0, outGoods: null, outBads: null, left: 980 },
   ],
   partitions: {
@@ -33,6 +33,8 @@ describe('findings of the sample pages', () => {
   it('give a bad rate only where there is an outcome', () => {
     expect(badRateOut(counts.waterfall[1])).toBe(0.25);
     expect(badRateOut(counts.waterfall[0])).toBeNull();
+    expect(badRateLeft(counts.waterfall[1])).toBe(145 / 930);
+    expect(badRateLeft(counts.waterfall[2])).toBeNull();
   });
   it('write amounts without empty digits', () => {
     expect([0.5, 95, 1250, -999, 4.1, 12345.678, 0].map(plain)).toEqual([

@@ -12,7 +12,8 @@ export function samplesFinding({ samples, uploads }: SampleList): string {
       : 'A CSV of past applicants with their outcome starts the work.';
   }
   const erased = samples.filter((sample) => sample.erased !== null).length;
-  if (erased === samples.length) return `The rows of ${erased === 1 ? 'the sample' : `all ${count(erased)} samples`} were erased; what was counted stays.`;
+  if (erased === samples.length)
+    return `The rows of ${erased === 1 ? 'the sample' : `all ${count(erased)} samples`} were erased; what was counted stays.`;
   const defined = samples.filter(({ definitions }) => definitions > 0).length;
   const waiting = samples.filter((sample) => sample.state === 'received' && sample.erased === null).length;
   if (waiting > 0)
@@ -59,7 +60,9 @@ export function mostFrequentOf(profile: ColumnProfile): string {
   const [first] = profile.mostFrequent;
   if (profile.hashed) return 'kept as hashes';
   if (!first && profile.flags.some(({ code }) => code === 'holds-personal-data')) return 'not listed';
-  return first ? `${profile.kind === 'numeric' ? written(first.value) : first.value} (${share(first.count / Math.max(1, profile.rows - profile.missing), 0)})` : '';
+  return first
+    ? `${profile.kind === 'numeric' ? written(first.value) : first.value} (${share(first.count / Math.max(1, profile.rows - profile.missing), 0)})`
+    : '';
 }
 
 /** Columns that nobody has looked at and that deserve it, for the notice on top. */
@@ -69,6 +72,18 @@ export const flagged = (list: ColumnList): number =>
 export function badRateOut(step: WaterfallStep): number | null {
   if (step.outGoods === null || step.outBads === null || step.outGoods + step.outBads === 0) return null;
   return step.outBads / (step.outGoods + step.outBads);
+}
+
+/** Of the rows that are left after a step, as far as their outcome is told. */
+export function badRateLeft({ leftGoods = 0, leftBads = 0 }: WaterfallStep): number | null {
+  return leftGoods + leftBads === 0 ? null : leftBads / (leftGoods + leftBads);
+}
+
+/** Whose outcome the bad rates count. */
+export function waterfallNote({ partitions }: DefinitionCounts): string {
+  return partitions.outOfTime.covered && partitions.outOfTime.rows > 0
+    ? 'bad rates without out-of-time, which is covered'
+    : 'bad rates of goods and bads, unweighted';
 }
 
 /** The step that takes out most of the rows, for the figure under the page's own sentence. */
@@ -135,14 +150,28 @@ export interface RulePart {
 /** The parts of an outcome by rule in the order they are asked: whoever is excluded is not looked at further. */
 export function ruleParts(rule: DraftOutcomeRule, days: string, counts: RuleCounts | null): RulePart[] {
   const { bad, indeterminate, monthsOnBook, missing } = rule;
-  const part = (key: string, label: string, means: string, rows: number | undefined): RulePart => ({ key, label, means, rows: rows ?? null });
+  const part = (key: string, label: string, means: string, rows: number | undefined): RulePart => ({
+    key,
+    label,
+    means,
+    rows: rows ?? null,
+  });
   return [
-    ...(monthsOnBook ? [part('months', 'Excluded', `${monthsOnBook.column} below ${plain(monthsOnBook.least)}`, counts?.tooFewMonths)] : []),
+    ...(monthsOnBook
+      ? [part('months', 'Excluded', `${monthsOnBook.column} below ${plain(monthsOnBook.least)}`, counts?.tooFewMonths)]
+      : []),
     ...(missing === 'excluded' ? [part('missing', 'Excluded', 'missing', counts?.missing)] : []),
     part('bad', 'Bad', `${days} of ${plain(bad)} or more`, counts?.bads),
     ...(indeterminate === null
       ? []
-      : [part('indeterminate', 'Indeterminate', `${days} from ${plain(indeterminate)} to below ${plain(bad)}`, counts?.indeterminates)]),
+      : [
+          part(
+            'indeterminate',
+            'Indeterminate',
+            `${days} from ${plain(indeterminate)} to below ${plain(bad)}`,
+            counts?.indeterminates,
+          ),
+        ]),
     part('good', 'Good', `${days} below ${plain(indeterminate ?? bad)}`, counts?.goods),
   ];
 }

@@ -12,6 +12,8 @@ interface Row {
   readonly bads: number | null;
   readonly indeterminates: number | null;
   readonly badRate: number | null;
+  readonly weight: number | null;
+  readonly weightedBadRate?: number | null;
 }
 
 /** Who is in which partition. The outcome of out-of-time stays covered until it is opened. */
@@ -20,7 +22,7 @@ interface Row {
   changeDetection: ChangeDetectionStrategy.OnPush,
   imports: [CellTemplate, DenseTable, PartitionMark],
   template: `
-    <ts-table caption="Partitions" [columns]="columns" [rows]="rows()" [identify]="byName">
+    <ts-table caption="Partitions" [columns]="columns()" [rows]="rows()" [identify]="byName">
       <ng-template tsCell="partition" [tsCellRows]="rows()" let-row>
         <ts-partition [partition]="row.partition" [covered]="row.covered" />
       </ng-template>
@@ -38,12 +40,23 @@ export class PartitionTable {
     ];
   });
   protected readonly byName = (row: Row): string => row.partition;
-  protected readonly columns: readonly Column<Row>[] = [
-    { key: 'partition', label: 'Partition', value: (row) => partitionName(row.partition) },
-    { key: 'rows', label: 'Rows', kind: 'count', value: (row) => row.rows },
-    { key: 'goods', label: 'Goods', kind: 'count', value: (row) => row.goods },
-    { key: 'bads', label: 'Bads', kind: 'count', value: (row) => row.bads },
-    { key: 'indeterminates', label: 'Indeterminates', kind: 'count', value: (row) => row.indeterminates },
-    { key: 'badRate', label: 'Bad rate', kind: 'share', value: (row) => row.badRate },
-  ];
+  /** Under weights the bad rate of the rows is not that of those who applied: both are told, side by side. */
+  protected readonly columns = computed<readonly Column<Row>[]>(() => [
+    ...counted,
+    ...(this.rows()[0].weightedBadRate === undefined ? [] : weighted),
+  ]);
 }
+
+const counted: readonly Column<Row>[] = [
+  { key: 'partition', label: 'Partition', value: (row) => partitionName(row.partition) },
+  { key: 'rows', label: 'Rows', kind: 'count', value: (row) => row.rows },
+  { key: 'goods', label: 'Goods', kind: 'count', value: (row) => row.goods },
+  { key: 'bads', label: 'Bads', kind: 'count', value: (row) => row.bads },
+  { key: 'indeterminates', label: 'Indeterminates', kind: 'count', value: (row) => row.indeterminates },
+  { key: 'badRate', label: 'Bad rate', kind: 'share', value: (row) => row.badRate },
+];
+
+const weighted: readonly Column<Row>[] = [
+  { key: 'weight', label: 'Weight', unit: 'goods and bads', kind: 'number', decimals: 1, value: (row) => row.weight },
+  { key: 'weightedBadRate', label: 'Bad rate', unit: 'weighted', kind: 'share', value: (row) => row.weightedBadRate ?? null },
+];

@@ -5,7 +5,7 @@ import { type Column } from '../../../ui/column';
 import { ElementWidth } from '../../../ui/element-width';
 import { FigureFrame, FigurePoint } from '../../../ui/figure-frame';
 import { MINUS, count, plural, share } from '../../../ui/numbers';
-import { badRateOut, waterfallFinding } from './findings';
+import { badRateLeft, badRateOut, waterfallFinding, waterfallNote } from './findings';
 
 
 /** From the rows of the file down to development: what each step takes out, and what is left. */
@@ -14,7 +14,7 @@ import { badRateOut, waterfallFinding } from './findings';
   changeDetection: ChangeDetectionStrategy.OnPush,
   imports: [ElementWidth, FigureFrame, FigurePoint],
   template: `
-    <ts-figure title="From the file to development" [finding]="finding()" [table]="table()">
+    <ts-figure title="From the file to development" [finding]="finding()" [note]="note()" [table]="table()">
       <div (tsWidth)="width.set($event)">
         <svg [attr.viewBox]="'0 0 ' + width() + ' ' + height()" [attr.width]="width()" [attr.height]="height()">
           @for (bar of bars(); track bar.index) {
@@ -64,6 +64,7 @@ export class WaterfallFigure {
   private readonly row = computed(() => (this.narrow() ? 62 : 44));
   protected readonly height = computed(() => this.counts().waterfall.length * this.row() + 4);
   protected readonly finding = computed(() => waterfallFinding(this.counts()));
+  protected readonly note = computed(() => waterfallNote(this.counts()));
 
   protected readonly bars = computed(() => {
     const { waterfall } = this.counts();
@@ -78,7 +79,9 @@ export class WaterfallFigure {
           : step.kind === 'source' || step.kind === 'development'
             ? ''
             : 'none';
-      const words = out === '' ? count(step.left) : `${out}; ${count(step.left)} left`;
+      const rateLeft = badRateLeft(step);
+      const left = `${count(step.left)}${out === '' ? '' : ' left'}${rateLeft === null ? '' : `, bad rate ${share(rateLeft)}`}`;
+      const words = out === '' ? left : `${out}; ${left}`;
       return {
         index,
         step,
@@ -87,7 +90,7 @@ export class WaterfallFigure {
         left: x(step.left),
         out: Math.max(0, x(step.out)),
         words,
-        read: `${step.label}: ${out === '' ? '' : `${plural(step.out, 'row')} out, `}${count(step.left)} left`,
+        read: `${step.label}: ${out === '' ? '' : `${plural(step.out, 'row')} out, `}${count(step.left)} left${rateLeft === null ? '' : `, bad rate ${share(rateLeft)}`}`,
       };
     });
   });
@@ -98,8 +101,11 @@ export class WaterfallFigure {
       { key: 'out', label: 'Rows out', kind: 'count', value: (step) => step.out },
       { key: 'goods', label: 'Goods out', kind: 'count', value: (step) => step.outGoods },
       { key: 'bads', label: 'Bads out', kind: 'count', value: (step) => step.outBads },
-      { key: 'rate', label: 'Bad rate', kind: 'share', value: badRateOut },
+      { key: 'rate', label: 'Bad rate', unit: 'out', kind: 'share', value: badRateOut },
       { key: 'left', label: 'Rows left', kind: 'count', value: (step) => step.left },
+      { key: 'leftGoods', label: 'Goods left', kind: 'count', value: (step) => step.leftGoods ?? null },
+      { key: 'leftBads', label: 'Bads left', kind: 'count', value: (step) => step.leftBads ?? null },
+      { key: 'leftRate', label: 'Bad rate', unit: 'left', kind: 'share', value: badRateLeft },
     ];
     return { columns, rows: this.counts().waterfall };
   });
