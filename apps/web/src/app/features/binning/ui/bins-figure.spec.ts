@@ -3,6 +3,7 @@ import { TestBed } from '@angular/core/testing';
 import { readBench, type Bins, type EditOf } from '@tallystone/numeric/bench';
 import { home, utilisation } from '../testing/characteristics';
 import { BinsFigure } from './bins-figure';
+import type { AxisMode } from './geometry';
 
 @Component({
   changeDetection: ChangeDetectionStrategy.OnPush,
@@ -13,6 +14,7 @@ import { BinsFigure } from './bins-figure';
     [bins]="bins()"
     [reading]="reading()"
     [editable]="editable()"
+    [mode]="mode()"
     [(cut)]="cut"
     [(bin)]="bin"
     [(chosen)]="chosen"
@@ -26,6 +28,7 @@ class Host {
   readonly bins = signal<Bins>(utilisation.current);
   readonly reading = computed(() => readBench(this.of().fine, this.bins()));
   readonly editable = signal(true);
+  readonly mode = signal<AxisMode>('value');
   readonly cut = signal<number | null>(null);
   readonly bin = signal<number | null>(null);
   readonly chosen = signal<ReadonlySet<string>>(new Set());
@@ -96,6 +99,44 @@ describe('the binning figure', () => {
     await press(cuts()[0], 'Delete');
     expect(host.edits.at(-1)).toMatchObject({ kind: 'bins merged', bins: { edges: [40] } });
     expect(cuts()).toHaveLength(1);
+  });
+
+  it('leaves the focus to a cut beside one that is taken out, and to the figure after the last', async () => {
+    const { root, fixture, press, cuts } = await setUp();
+    document.body.append(root);
+    (cuts()[1] as SVGElement).focus();
+    await press(cuts()[1], 'Delete');
+    await fixture.whenStable();
+    expect(cuts()).toHaveLength(1);
+    expect(document.activeElement).toBe(cuts()[0]);
+    await press(cuts()[0], 'Delete');
+    await fixture.whenStable();
+    expect(cuts()).toHaveLength(0);
+    expect(document.activeElement?.tagName.toLowerCase()).toBe('svg');
+    root.remove();
+  });
+
+  it('has ticks of values under the cuts, and none where classes stand side by side', async () => {
+    const { host, root, fixture } = await setUp();
+    const ticks = () => [...root.querySelectorAll('.ts-axis:not(.ts-axis-open) .tick')].map((tick) => tick.textContent?.trim());
+    expect(ticks()).toContain('20');
+    expect(ticks().length).toBeGreaterThan(3);
+    host.mode.set('rows');
+    await fixture.whenStable();
+    expect(ticks()).toEqual([]);
+  });
+
+  it('has rows, goods and bads of each bin under it', async () => {
+    const { root } = await setUp();
+    const row = (name: string) => {
+      const line = [...root.querySelectorAll('ts-bins-table tbody tr')].find(
+        (one) => one.querySelector('th')?.textContent?.trim() === name,
+      );
+      return [...(line?.querySelectorAll('td') ?? [])].map((cell) => cell.textContent?.trim()).filter((text) => text !== '');
+    };
+    expect(row('Rows')).toEqual(['200', '200', '600', '80', '60']);
+    expect(row('Goods')).toEqual(['189', '180', '465', '60', '50']);
+    expect(row('Bads')).toEqual(['11', '20', '135', '20', '10']);
   });
 
   it('drags a cut: shows where it would lie and edits once when it is let go', async () => {
@@ -275,6 +316,62 @@ describe('the binning figure', () => {
         },
       },
     ]);
+  });
+
+  const dragging = async () => {
+    const { host, root, fixture, press } = await setUp(home);
+    const svg = root.querySelector('svg[viewBox^="0 0"]') as SVGSVGElement;
+    const width = Number(svg.getAttribute('width'));
+    svg.getBoundingClientRect = () => ({ left: 0, width, top: 0, height: 100 }) as DOMRect;
+    const category = (name: string) => root.querySelector(`[data-category="${name}"]`) as SVGElement;
+    const pointer = async (type: string, name: string, clientX: number) => {
+      category(name).dispatchEvent(Object.assign(new MouseEvent(type, { clientX, button: 0, bubbles: true }), { pointerId: 1 }));
+      await fixture.whenStable();
+    };
+    const x = (name: string): number => Number(category(name).querySelector('text')?.getAttribute('x'));
+    return { host, root, press, category, pointer, x };
+  };
+
+  it('makes a new group of what is dragged into the empty space, and none of what is put on missing', async () => {
+    const { host, root, pointer, x } = await dragging();
+    await pointer('pointerdown', 'parents', x('parents'));
+    await pointer('pointermove', 'parents', 20);
+    expect(root.querySelector('.apart.over')).not.toBeNull();
+    expect(root.querySelector('svg')?.parentElement?.textContent).toContain('New group');
+    await pointer('pointerup', 'parents', 20);
+    expect(root.querySelector('.apart')).toBeNull();
+    expect(host.edits).toMatchObject([
+      { kind: 'category set apart', bins: { groups: [['owner'], ['parents'], ['rent'], ['other']] } },
+    ]);
+    const width = Number(root.querySelector('svg[viewBox^="0 0"]')?.getAttribute('width'));
+    await pointer('pointerdown', 'other', x('other'));
+    await pointer('pointermove', 'other', width - 40);
+    await pointer('pointerup', 'other', width - 40);
+    expect(host.edits).toHaveLength(1);
+  });
+
+  it('lets go of categories with Escape: what is dragged first, then what is chosen', async () => {
+    const { host, press, category, pointer, x } = await dragging();
+    await press(category('rent'), ' ');
+    expect([...host.chosen()]).toEqual(['rent']);
+    await pointer('pointerdown', 'other', x('other'));
+    await pointer('pointermove', 'other', x('owner'));
+    await press(category('other'), 'Escape');
+    await pointer('pointerup', 'other', x('owner'));
+    expect(host.edits).toEqual([]);
+    expect([...host.chosen()]).toEqual(['rent']);
+    await press(category('rent'), 'Escape');
+    expect(host.chosen().size).toBe(0);
+  });
+
+  it('says the number of each group above it', async () => {
+    const { root } = await setUp(home);
+    const numbers = [...root.querySelectorAll('.group-number')];
+    expect(numbers.map((one) => one.textContent?.trim())).toEqual(['1', '2', '3']);
+    const places = numbers.map((one) => Number(one.getAttribute('x')));
+    const owner = Number(root.querySelector('[data-category="owner"] text')?.getAttribute('x'));
+    expect(places[0]).toBeCloseTo(owner, 6);
+    expect(places).toEqual([...places].sort((a, b) => a - b));
   });
 
   it('has a point for every mark of every partition, and none of out-of-time while it is covered', async () => {

@@ -2,7 +2,10 @@ import {
   ChangeDetectionStrategy,
   Component,
   type ElementRef,
+  Injector,
+  afterNextRender,
   computed,
+  inject,
   input,
   model,
   output,
@@ -23,7 +26,7 @@ import {
   type NumericBins,
   type PartitionName,
 } from '@tallystone/numeric/bench';
-import { axisLeft } from 'd3-axis';
+import { axisBottom, axisLeft } from 'd3-axis';
 import { AxisDirective } from '../../../ui/axis';
 import type { Column } from '../../../ui/column';
 import { ElementWidth } from '../../../ui/element-width';
@@ -48,8 +51,8 @@ interface DraggedCategory {
   readonly categories: readonly string[];
   readonly fromX: number;
   readonly moved: boolean;
-  /** Group under the pointer. */
-  readonly over: number | null;
+  /** Group under the pointer, or the empty space beside the groups, where a new one is made. */
+  readonly over: number | 'new' | null;
 }
 
 /** A cut that is let go this near to a round number goes there, unless Alt is held; this near to where it began, it stays. */
@@ -98,6 +101,7 @@ export class BinsFigure {
   readonly placed = output<{ cut: number; value: number }>();
   readonly binKey = output<{ bin: number; event: KeyboardEvent }>();
 
+  private readonly injector = inject(Injector);
   private readonly svg = viewChild<ElementRef<SVGSVGElement>>('svg');
   protected readonly wide = signal(960);
   protected readonly dragged = signal<Dragged | null>(null);
@@ -109,7 +113,21 @@ export class BinsFigure {
   protected readonly written = written;
   protected readonly geometry = computed(() => layOut(this.fine(), this.bins(), this.reading(), this.wide(), this.mode()));
   protected readonly axisY = computed(() => this.geometry().baseline + sizes.bads + sizes.gap);
-  protected readonly ladderTop = computed(() => this.axisY() + sizes.axis + sizes.ladderGap);
+  /** Values along the axis; null where classes stand side by side, or categories. */
+  protected readonly valueAxis = computed(() => {
+    const { values, axis } = this.geometry();
+    return (
+      values &&
+      axisBottom(values)
+        .ticks(Math.max(2, Math.floor((axis[1] - axis[0]) / 84)))
+        .tickFormat((value) => written(Number(value)))
+        .tickSizeInner(5)
+    );
+  });
+  protected readonly valueAxisY = computed(() => this.axisY() + sizes.axis + 6);
+  protected readonly ladderTop = computed(
+    () => this.axisY() + sizes.axis + sizes.ladderGap + (this.valueAxis() ? sizes.values : 0),
+  );
   protected readonly height = computed(() => this.ladderTop() + sizes.ladder + 8);
   protected readonly scale = computed(() => ladderScale(this.reading(), this.ladderTop()));
   protected readonly ladderAxis = computed(() => axisLeft(this.scale()).ticks(5));
@@ -127,6 +145,15 @@ export class BinsFigure {
     const groups = columns.filter(({ bin }) => bin !== null && this.reading().bins[bin].kind === 'group');
     return groups.slice(1).map(({ x0 }) => ({ x: x0 }));
   });
+
+  /** Number of each group, which is the key that sends categories there. */
+  protected readonly numbers = computed(() =>
+    this.numeric()
+      ? []
+      : this.geometry().columns.flatMap(({ bin, x0, x1 }) =>
+          bin !== null && this.reading().bins[bin].kind === 'group' ? [{ number: bin + 1, x: (x0 + x1) / 2 }] : [],
+        ),
+  );
 
   /** Categories in the order they are drawn. */
   protected readonly categories = computed(() => {
@@ -264,6 +291,7 @@ export class BinsFigure {
       case 'Delete':
       case 'Backspace':
         this.emit(mergeNumeric(fine, bins, cut));
+        this.focusBeside(cut);
         event.preventDefault();
         return;
       case 'Enter':
@@ -286,6 +314,18 @@ export class BinsFigure {
     }
     event.preventDefault();
     if (edge !== null) this.emit(moveCut(fine, bins, cut, edge));
+  }
+
+  /** A cut that is gone leaves the focus to the one that stands in its place, or before it; the last one leaves it to the figure. */
+  private focusBeside(cut: number): void {
+    afterNextRender(
+      () => {
+        const svg = this.svg()?.nativeElement;
+        const notches = svg?.querySelectorAll<SVGElement>('.notch') ?? [];
+        (notches[Math.min(cut, notches.length - 1)] ?? svg)?.focus();
+      },
+      { injector: this.injector },
+    );
   }
 
   protected grab(event: PointerEvent, cut: number): void {
@@ -344,6 +384,12 @@ export class BinsFigure {
     else if (event.key === ' ' || event.key === 'Enter') {
       this.choose(name);
       event.preventDefault();
+    } else if (event.key === 'Escape') {
+      // First what is being dragged, then what is chosen; else it is not for the figure.
+      if (this.carried()) this.letGo();
+      else if (this.chosen().size > 0) this.chosen.set(new Set());
+      else return;
+      event.preventDefault();
     } else if (event.key === 'n') this.group('new', name);
     else if (/^[1-9]$/.test(event.key)) this.group(Number(event.key) - 1, name);
     else return;
@@ -374,7 +420,7 @@ export class BinsFigure {
     const carried = this.carried();
     if (!carried || carried.pointer !== event.pointerId) return;
     const moved = carried.moved || Math.abs(event.clientX - carried.fromX) >= dragFrom;
-    this.carried.set({ ...carried, moved, over: moved ? this.groupAt(this.atX(event)) : null });
+    this.carried.set({ ...carried, moved, over: moved ? this.overAt(this.atX(event)) : null });
   }
 
   protected put(event: PointerEvent, name: string): void {
@@ -386,7 +432,7 @@ export class BinsFigure {
       return;
     }
     const bins = this.bins();
-    const over = this.groupAt(this.atX(event));
+    const over = this.overAt(this.atX(event));
     if (bins.kind === 'categorical' && over !== null) this.emit(groupCategories(this.fine(), bins, carried.categories, over));
   }
 
@@ -418,9 +464,10 @@ export class BinsFigure {
     return snapped(places, event.altKey ? 0 : snapReach)?.value ?? null;
   }
 
-  private groupAt(x: number): number | null {
-    const column = this.geometry().columns.find(({ bin, x0, x1 }) => bin !== null && x >= x0 && x < x1);
-    return column && column.bin !== null && this.reading().bins[column.bin].kind === 'group' ? column.bin : null;
+  private overAt(x: number): number | 'new' | null {
+    const column = this.geometry().columns.find(({ x0, x1 }) => x >= x0 && x < x1);
+    if (!column) return 'new';
+    return column.bin !== null && this.reading().bins[column.bin].kind === 'group' ? column.bin : null;
   }
 
   /** Horizontal place of the pointer in the drawing's own pixels. */

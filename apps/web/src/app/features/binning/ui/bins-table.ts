@@ -1,6 +1,6 @@
 import { ChangeDetectionStrategy, Component, computed, input, model, output } from '@angular/core';
 import type { BenchReading, PartitionName } from '@tallystone/numeric/bench';
-import { DASH, share, woe } from '../../../ui/numbers';
+import { DASH, fixed, share, woe } from '../../../ui/numbers';
 import { partitionName } from '../../../ui/partition-mark';
 import { type DrawnBin, sizes } from './geometry';
 
@@ -184,6 +184,10 @@ export class BinsTable {
     });
     const figures = (bin: number) => bins[bin].figures[partition];
     return [
+      row('Rows', (bin) => fixed(figures(bin)?.rows, 0)),
+      // Weighted where the sample has weights.
+      row('Goods', (bin) => fixed(figures(bin)?.goods, 0)),
+      row('Bads', (bin) => fixed(figures(bin)?.bads, 0)),
       row('Share', (bin) => share(figures(bin)?.share)),
       row('Bad rate', (bin) => share(figures(bin)?.badRate)),
       row('95 % interval', (bin) => {

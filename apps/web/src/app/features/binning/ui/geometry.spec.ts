@@ -33,6 +33,15 @@ describe('where the binning figure puts things', () => {
     expect([1, 2, 5, 10, 20]).toContain(numeric.badsTimes);
   });
 
+  it('has a scale of values that cuts stand on, and none where classes stand side by side', () => {
+    const reading = readBench(utilisation.fine, utilisation.current);
+    const { values, cuts, axis } = numeric;
+    for (const { edge, x } of cuts) expect(values?.(edge)).toBeCloseTo(x, 6);
+    expect(values?.domain().map((value) => values(value))).toEqual([...axis]);
+    expect(layOut(utilisation.fine, utilisation.current, reading, 1000, 'rows').values).toBeNull();
+    expect(layOut(home.fine, home.current, readBench(home.fine, home.current), 1000, 'value').values).toBeNull();
+  });
+
   it('gives every fine class the same room in the other view', () => {
     const { classes, cuts, axis } = layOut(
       utilisation.fine,

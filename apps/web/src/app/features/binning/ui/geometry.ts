@@ -7,12 +7,14 @@ import { binWords } from '../../../ui/numbers';
 export const sizes = {
   left: 112,
   right: 8,
-  top: 12,
+  top: 16,
   goods: 150,
   bads: 70,
   /** From the bads to the axis of values. */
   gap: 14,
   axis: 34,
+  /** Ticks of values under the cuts. */
+  values: 26,
   ladder: 150,
   ladderGap: 22,
   /** A special code, missing or unseen categories. */
@@ -58,6 +60,8 @@ export interface Geometry {
   readonly axis: readonly [number, number];
   /** Where each fine edge stands: the places a cut can be dragged to. */
   readonly edges: readonly { readonly edge: number; readonly x: number }[];
+  /** From values to places; null where fine classes stand side by side. */
+  readonly values: ScaleLinear<number, number> | null;
   /** Bads are drawn this many times as high as goods. */
   readonly badsTimes: number;
   readonly baseline: number;
@@ -88,7 +92,8 @@ export function layOut(fine: FineClasses, bins: Bins, reading: BenchReading, wan
   const extras = extraSlots(fine, reading);
   const end = width - sizes.right - extras.length * sizes.slot - (extras.length > 0 ? sizes.slotGap : 0);
   const axis: [number, number] = [sizes.left, end];
-  const bounds = fine.kind === 'numeric' ? numericBounds(fine, axis, mode) : null;
+  const values = fine.kind === 'numeric' && mode === 'value' ? valueScale(fine, axis) : null;
+  const bounds = fine.kind === 'numeric' ? numericBounds(fine, axis, values) : null;
   const order = fine.kind === 'numeric' ? null : categoryOrder(fine, bins);
   const step = (end - sizes.left) / Math.max(1, classes);
   const place = (slot: number): [number, number] => {
@@ -112,6 +117,7 @@ export function layOut(fine: FineClasses, bins: Bins, reading: BenchReading, wan
         : [],
     axis,
     edges: bounds ? fine.edges.map((edge, index) => ({ edge, x: bounds[index + 1] })) : [],
+    values,
     badsTimes,
     baseline: sizes.top + sizes.goods,
   };
@@ -158,19 +164,26 @@ function extraSlots(fine: FineClasses, reading: BenchReading): Extra[] {
 }
 
 /** Pixel bounds of fine classes: one more than there are classes. */
-function numericBounds(fine: FineClasses, [from, to]: [number, number], mode: AxisMode): number[] {
+function numericBounds(
+  fine: FineClasses,
+  [from, to]: readonly [number, number],
+  values: ScaleLinear<number, number> | null,
+): number[] {
   const classes = classCount(fine);
-  if (mode === 'rows' || fine.edges.length < 2 || !fine.range) {
-    return Array.from({ length: classes + 1 }, (_, index) => from + ((to - from) * index) / classes);
-  }
+  if (!values) return Array.from({ length: classes + 1 }, (_, index) => from + ((to - from) * index) / classes);
+  return [from, ...fine.edges.map((edge) => values(edge)), to];
+}
+
+/** The axis of values; null where there are too few fine edges to make one. */
+function valueScale(fine: FineClasses, [from, to]: readonly [number, number]): ScaleLinear<number, number> | null {
+  if (fine.edges.length < 2 || !fine.range) return null;
   const first = fine.edges[0];
   const last = fine.edges[fine.edges.length - 1];
   // A few extreme values must not squeeze all others together: the outermost classes are at most a tenth of the rest wide.
   const reach = (last - first) * 0.1;
-  const scale = scaleLinear()
+  return scaleLinear()
     .domain([Math.max(fine.range[0], first - reach), Math.min(fine.range[1], last + reach)])
     .range([from, to]);
-  return [from, ...fine.edges.map((edge) => scale(edge)), to];
 }
 
 function heights(
