@@ -14,7 +14,7 @@ import { ProblemList } from '../../../ui/problem-list';
 import { count, plural } from '../../../ui/numbers';
 import { monthsOf } from '../data/binnings';
 import { MonthsFigure } from '../ui/months-figure';
-import { fits } from '../ui/months-view';
+import { type Measure, type Span, fits } from '../ui/months-view';
 
 /** How long bins have to rest before they are drawn over time. */
 const SETTLED_MS = 150;
@@ -31,7 +31,16 @@ const SETTLED_MS = 150;
     </ts-problems>
     @if (shown(); as shown) {
       @if (shown.dateColumn) {
-        <ts-months-figure [fine]="drawn().fine" [bins]="drawn().bins" [reading]="drawn().reading" [months]="shown" />
+        <ts-months-figure
+          [fine]="drawn().fine"
+          [bins]="drawn().bins"
+          [reading]="drawn().reading"
+          [months]="shown"
+          [measure]="measure()"
+          [askedSpan]="askedSpan()"
+          (measured)="measured.emit($event)"
+          (spanned)="spanned.emit($event)"
+        />
         <p class="ts-caption">
           Bar: development, circle: hold-out{{ fine().outOfTime ? ', diamond: out-of-time' : '' }}, each with its 95 % interval
           from its own counts. Broken line: the bin over all of development; every strip has the same scale about its own line.
@@ -67,6 +76,11 @@ export class BenchMonths {
   readonly fine = input.required<FineClasses>();
   readonly bins = input.required<Bins>();
   readonly reading = input.required<BenchReading>();
+  readonly measure = input<Measure>('woe');
+  /** Null: as suits the counts. */
+  readonly askedSpan = input<Span | null>(null);
+  readonly measured = output<Measure>();
+  readonly spanned = output<Span>();
   /** How far WOE moves between months, with the bins as they rest; null where that cannot be told. */
   readonly drifts = output<MonthlyDrift | null>();
 

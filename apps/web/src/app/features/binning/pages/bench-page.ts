@@ -50,7 +50,9 @@ import { BenchMonths } from './bench-months';
 import { BinsFigure } from '../ui/bins-figure';
 import { EditList, type KnownEdit } from '../ui/edit-list';
 import { type AxisMode, layOut } from '../ui/geometry';
+import { type Measure, type Span, asMeasure, asSpan } from '../ui/months-view';
 import { OutOfTimeCover } from '../ui/out-of-time-cover';
+import { PartitionFigures } from '../ui/partition-figures';
 import { Places } from '../ui/places';
 import type { ReclassAnswer, ReclassQuestion } from '../ui/reclass-dialog';
 import type { StaleAnswer, StaleQuestion } from '../ui/stale-dialog';
@@ -73,6 +75,7 @@ import type { StaleAnswer, StaleQuestion } from '../ui/stale-dialog';
     EditList,
     OutOfTimeCover,
     PageHeader,
+    PartitionFigures,
     Places,
     ProblemList,
     Tombstone,
@@ -92,7 +95,11 @@ export class BenchPage {
   readonly modelId = input.required<string>();
   readonly binningId = input.required<string>();
   readonly characteristicId = input.required<string>();
+  // What is looked at, which stands in the address: a link, a reload and the way back show it again.
   readonly axis = input<string>();
+  readonly partition = input<string>();
+  readonly measure = input<string>();
+  readonly period = input<string>();
 
   readonly unsaved = this.bench.unsaved;
 
@@ -105,7 +112,6 @@ export class BenchPage {
   protected readonly cut = signal<number | null>(null);
   protected readonly bin = signal<number | null>(null);
   protected readonly chosen = signal<ReadonlySet<string>>(new Set());
-  protected readonly partition = signal<PartitionName>('development');
   protected readonly writing = signal<string | null>(null);
   protected readonly placing = new Task();
   protected readonly changing = new Task();
@@ -168,6 +174,13 @@ export class BenchPage {
     if (asked === 'value' || asked === 'rows') return asked;
     return this.usualMode();
   });
+  /** Partition of the table under the figure; out-of-time only once it has been opened. */
+  protected readonly shownPartition = computed<PartitionName>(() => {
+    const asked = this.partition();
+    return asked === 'holdOut' || (asked === 'outOfTime' && this.bench.fine()?.outOfTime) ? asked : 'development';
+  });
+  protected readonly shownMeasure = computed<Measure>(() => asMeasure(this.measure()) ?? 'woe');
+  protected readonly askedSpan = computed<Span | null>(() => asSpan(this.period()));
   /** Along the values where every bin has room for its figures there; else by rows. Decided once per characteristic, not with every move. */
   private readonly usualMode = computed<AxisMode>(() => {
     const detail = this.bench.detail();
@@ -333,8 +346,8 @@ export class BenchPage {
     if (fine && cut !== null && bins?.kind === 'numeric') this.edit(mergeNumeric(fine, bins, cut));
   }
 
-  protected show(axis: AxisMode): void {
-    void this.router.navigate([], { queryParams: { axis }, queryParamsHandling: 'merge', replaceUrl: true });
+  protected show(queryParams: Partial<Record<'axis' | 'partition' | 'measure' | 'period', string | null>>): void {
+    void this.router.navigate([], { queryParams, queryParamsHandling: 'merge', replaceUrl: true });
   }
 
   protected async reclass(): Promise<void> {

@@ -80,7 +80,7 @@ export class CharacteristicsPage {
   );
   protected readonly run = this.runs.run(() => (this.binning.hasValue() ? this.binning.value().runId : null));
   protected readonly all = computed(() => (this.list.hasValue() ? this.list.value().characteristics : null));
-  protected readonly rows = computed(() => filtered(this.all() ?? [], this.part(), this.search() ?? ''));
+  protected readonly rows = computed(() => filtered(this.all() ?? [], this.part(), this.search() ?? '', this.labels()));
   protected readonly finding = computed(() => (this.list.hasValue() ? this.list.value().finding : null));
   /** Edits not carried over that a characteristic of this binning shows. */
   protected readonly notCarriedHere = computed(() => (this.all() ?? []).reduce((sum, { notCarried }) => sum + notCarried, 0));

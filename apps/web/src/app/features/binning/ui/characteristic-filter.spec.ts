@@ -27,6 +27,14 @@ describe('the list of characteristics', () => {
     expect(names('all', ' INC ')).toEqual(['Income']);
   });
 
+  it('searches what the dictionary calls a column as well as its name', () => {
+    const labels = new Map([['utilisation', 'Share of the limit that is drawn']]);
+    const names = (search: string): string[] => filtered(list, 'all', search, labels).map(({ column }) => column);
+    expect(names('the LIMIT')).toEqual(['utilisation']);
+    expect(names('util')).toEqual(['utilisation']);
+    expect(names('nowhere')).toEqual([]);
+  });
+
   it('reads the part from the address and takes what it does not know as all', () => {
     expect(asPart('left-out')).toBe('left-out');
     expect(asPart('nonsense')).toBe('all');

@@ -41,9 +41,17 @@ const holds: Record<ShownPart, (one: CharacteristicSummary) => boolean> = {
 
 export const asPart = (text: string | undefined): ShownPart => shownParts.find((part) => part === text) ?? 'all';
 
-export function filtered(list: readonly CharacteristicSummary[], part: ShownPart, search: string): CharacteristicSummary[] {
+/** @param labels what the dictionary calls the columns, which is shown beside their names and searched as well */
+export function filtered(
+  list: readonly CharacteristicSummary[],
+  part: ShownPart,
+  search: string,
+  labels: ReadonlyMap<string, string> = new Map(),
+): CharacteristicSummary[] {
   const wanted = search.trim().toLowerCase();
-  return list.filter((one) => holds[part](one) && one.column.toLowerCase().includes(wanted));
+  return list.filter(
+    (one) => holds[part](one) && [one.column, labels.get(one.column) ?? ''].some((name) => name.toLowerCase().includes(wanted)),
+  );
 }
 
 const warningWords: Record<CharacteristicSummary['warnings'][number]['code'], string> = {

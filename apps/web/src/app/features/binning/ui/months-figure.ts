@@ -1,4 +1,4 @@
-import { ChangeDetectionStrategy, Component, computed, input, linkedSignal, signal } from '@angular/core';
+import { ChangeDetectionStrategy, Component, computed, input, linkedSignal, output, signal } from '@angular/core';
 import { MatButtonToggleModule } from '@angular/material/button-toggle';
 import type { CharacteristicMonths } from '@tallystone/contracts/binnings/months';
 import { readPeriods, type BenchReading, type Bins, type FineClasses } from '@tallystone/numeric/bench';
@@ -19,7 +19,7 @@ import { type Measure, type PeriodRow, type Span, drawMonths, monthsFinding, per
         aria-label="Measure"
         [value]="measure()"
         [hideSingleSelectionIndicator]="true"
-        (change)="measure.set($event.value)"
+        (change)="measured.emit($event.value)"
       >
         <mat-button-toggle value="woe">WOE</mat-button-toggle>
         <mat-button-toggle value="badRate">Bad rate</mat-button-toggle>
@@ -28,7 +28,7 @@ import { type Measure, type PeriodRow, type Span, drawMonths, monthsFinding, per
         aria-label="Period"
         [value]="span()"
         [hideSingleSelectionIndicator]="true"
-        (change)="span.set($event.value)"
+        (change)="spanned.emit($event.value)"
       >
         <mat-button-toggle value="month">By month</mat-button-toggle>
         <mat-button-toggle value="quarter">By quarter</mat-button-toggle>
@@ -138,14 +138,19 @@ export class MonthsFigure {
   readonly bins = input.required<Bins>();
   readonly reading = input.required<BenchReading>();
   readonly months = input.required<CharacteristicMonths>();
+  readonly measure = input<Measure>('woe');
+  /** Null: as suits the counts. */
+  readonly askedSpan = input<Span | null>(null);
+  readonly measured = output<Measure>();
+  readonly spanned = output<Span>();
 
   protected readonly wide = signal(900);
-  protected readonly measure = signal<Measure>('woe');
   /** Decided once for the counts that came, not with every move of a cut. */
-  protected readonly span = linkedSignal<CharacteristicMonths, Span>({
+  private readonly usual = linkedSignal<CharacteristicMonths, Span>({
     source: this.months,
     computation: (months, before) => before?.value ?? usualSpan(this.fine(), this.bins(), months),
   });
+  protected readonly span = computed(() => this.askedSpan() ?? this.usual());
   private readonly periods = computed(() => readPeriods(this.fine(), this.bins(), this.months(), this.span()));
   protected readonly title = computed(
     () => `${this.measure() === 'woe' ? 'WOE' : 'Bad rate'} of the bins by ${this.span()} of application`,

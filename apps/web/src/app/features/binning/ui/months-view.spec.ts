@@ -1,7 +1,7 @@
 import type { CharacteristicMonths } from '@tallystone/contracts/binnings/months';
 import { readBench, readPeriods } from '@tallystone/numeric/bench';
 import { utilisation } from '../testing/characteristics';
-import { drawMonths, fits, monthsFinding, periodRows, usualSpan } from './months-view';
+import { asMeasure, asSpan, drawMonths, fits, monthsFinding, periodRows, usualSpan } from './months-view';
 
 const { fine, current: bins } = utilisation;
 const reading = readBench(fine, bins);
@@ -21,6 +21,16 @@ const months = (part: number, names: readonly string[]): CharacteristicMonths =>
 const year = Array.from({ length: 12 }, (_, month) => `2023-${String(month + 1).padStart(2, '0')}`);
 
 describe('bins by month', () => {
+  it('takes what the address says, and nothing else', () => {
+    expect([asSpan('month'), asSpan('quarter'), asSpan('year'), asSpan(undefined)]).toEqual(['month', 'quarter', null, null]);
+    expect([asMeasure('woe'), asMeasure('badRate'), asMeasure('iv'), asMeasure(undefined)]).toEqual([
+      'woe',
+      'badRate',
+      null,
+      null,
+    ]);
+  });
+
   it('goes by month where cells can be read, else by quarter', () => {
     expect(usualSpan(fine, bins, months(0.5, year))).toBe('month');
     expect(usualSpan(fine, bins, months(0.02, year))).toBe('quarter');

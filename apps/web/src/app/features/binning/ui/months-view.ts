@@ -18,6 +18,10 @@ import { type Partition, partitionName } from '../../../ui/partition-mark';
 export type Span = 'month' | 'quarter';
 export type Measure = 'woe' | 'badRate';
 
+/** As the address says it; null where it says nothing, or something else. */
+export const asSpan = (text: string | undefined): Span | null => (text === 'month' || text === 'quarter' ? text : null);
+export const asMeasure = (text: string | undefined): Measure | null => (text === 'woe' || text === 'badRate' ? text : null);
+
 const sizes = { right: 24, top: 6, strip: 56, gap: 12, axis: 26, radius: 3.4 } as const;
 
 /** True where the counts are of the slots that the fine classes have now: a split makes more of them. */
