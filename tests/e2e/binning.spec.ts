@@ -1,4 +1,4 @@
-import type { CharacteristicDetail, BinningHistory } from '@tallystone/contracts/binnings/schema';
+import type { CharacteristicDetail, CharacteristicList, BinningHistory } from '@tallystone/contracts/binnings/schema';
 import type { MemberCandidates } from '@tallystone/contracts/models/schema';
 import { readBench } from '@tallystone/numeric/bench';
 import type { Browser, Locator, Page } from '@playwright/test';
@@ -157,6 +157,157 @@ test('the same by keys: moved, taken out, typed; undone and redone', async ({ pa
   await bench.reset();
 });
 
+test('a notch that is only pressed stays; dragged, it snaps to a round number, with Alt it does not; r rounds', async ({
+  page,
+  signInAs,
+}) => {
+  await signInAs('modeller');
+  const bench = new BenchOnPage(page, await readDemoPlaces(page), 'oldest_line_months');
+  await bench.open();
+  const cut = bench.cut(3);
+  const { fine } = await bench.stored();
+  const start = await bench.valueOf(cut);
+  const sent: string[] = [];
+  page.on('request', (request) => request.method() === 'PUT' && sent.push(request.url()));
+  const middle = async (): Promise<{ x: number; y: number }> => {
+    const box = (await cut.locator('.vee').boundingBox())!;
+    return { x: box.x + box.width / 2, y: box.y + 4 };
+  };
+  const at = await middle();
+  for (const away of [0, 5, -5]) await page.mouse.click(at.x + away, at.y);
+  // A hand that shakes, and one that thinks better of it.
+  await page.mouse.move(at.x, at.y);
+  await page.mouse.down();
+  await page.mouse.move(at.x + 2, at.y);
+  await page.mouse.up();
+  await page.mouse.move(at.x, at.y);
+  await page.mouse.down();
+  await page.mouse.move(at.x + 40, at.y, { steps: 4 });
+  await page.mouse.move(at.x, at.y, { steps: 4 });
+  await page.mouse.up();
+  expect(await bench.valueOf(cut)).toBe(start);
+  await expect(bench.edits).toContainText('as they were classed automatically');
+  await expect(page.getByRole('button', { name: 'Undo' })).toBeDisabled();
+
+  // Let go beside an edge that is rounder than the one under the pointer: by rows, fine edges stand at equal distances.
+  const bars = await page
+    .locator('ts-bins-figure svg rect.good')
+    .evaluateAll((all) => all.map((bar) => bar.getBoundingClientRect().x).sort((a, b) => a - b));
+  const step = (bars[fine.edges.length] - bars[0]) / fine.edges.length;
+  const places = fine.edges.map((edge, index) => ({ edge, x: at.x + (index - fine.edges.indexOf(start)) * step }));
+  const digits = (value: number): number =>
+    value === 0
+      ? 0
+      : String(Math.abs(value))
+          .replace('.', '')
+          .replace(/^0+|0+$/g, '').length;
+  const drop = places
+    .filter(({ edge, x }) => edge > start && edge < (fine.edges.at(-1) ?? 0) && x - at.x > 25)
+    .flatMap((here) => {
+      const near = places.filter(({ x }) => Math.abs(x - here.x) < 9);
+      const roundest = near.reduce((best, one) => (digits(one.edge) < digits(best.edge) ? one : best));
+      return digits(roundest.edge) < digits(here.edge) ? [{ here, roundest }] : [];
+    })[0];
+  const to = await bench.valueOf(bench.cut(4));
+  expect(drop.roundest.edge).toBeLessThan(to);
+  const drag = async (x: number): Promise<void> => {
+    const from = await middle();
+    await page.mouse.move(from.x, from.y);
+    await page.mouse.down();
+    await page.mouse.move(x, from.y, { steps: 8 });
+    await page.mouse.up();
+  };
+  await drag(drop.here.x);
+  const snapped = await bench.valueOf(cut);
+  expect(digits(snapped)).toBeLessThan(digits(drop.here.edge));
+  await page.keyboard.press('Control+z');
+  await expect.poll(() => bench.valueOf(cut)).toBe(start);
+  await page.keyboard.down('Alt');
+  await drag(drop.here.x);
+  await page.keyboard.up('Alt');
+  expect(await bench.valueOf(cut)).toBe(drop.here.edge);
+  await bench.saved();
+
+  // To a rounder number, which may lie inside a fine class.
+  const before = await bench.valueOf(cut);
+  await cut.focus();
+  await page.keyboard.press('r');
+  await expect.poll(() => bench.valueOf(cut)).not.toBe(before);
+  expect(digits(await bench.valueOf(cut))).toBeLessThan(digits(before));
+  expect(sent.length).toBeGreaterThan(0);
+  await bench.saved();
+
+  // After a reload every step is still there to be taken back.
+  await expect.poll(async () => (await bench.stored()).edits).toBeGreaterThan(0);
+  await page.reload();
+  await expect(page.getByRole('button', { name: 'Undo' })).toBeEnabled();
+  const { edits } = await bench.stored();
+  for (let step = 0; step < edits; step++) await page.getByRole('button', { name: 'Undo' }).click();
+  await expect(page.getByRole('button', { name: 'Undo' })).toBeDisabled();
+  await expect(bench.edits).toContainText('as they were classed automatically');
+  await expect.poll(async () => (await bench.stored()).edits).toBe(0);
+});
+
+test('a category is dragged onto another group, and sent there by keys', async ({ page, signInAs }) => {
+  await signInAs('modeller');
+  const demo = await readDemoPlaces(page);
+  const { characteristics } = (await (
+    await page.request.get(`/api/binnings/${demo.binningId}/characteristics`)
+  ).json()) as CharacteristicList;
+  const found = characteristics.find(({ kind, edits, bins }) => kind === 'categorical' && edits === 0 && bins > 3)!;
+  const bench = new BenchOnPage(page, demo, found.column);
+  await page.goto(`/models/${demo.modelId}/binning/${demo.binningId}/${found.id}`);
+  const groups = async (): Promise<readonly (readonly string[])[]> => {
+    const { current } = await bench.stored();
+    return current.kind === 'categorical' ? current.groups : [];
+  };
+  const start = await groups();
+  const [first, last] = [start[0][0], start.at(-1)![0]];
+  const category = (name: string): Locator => page.getByRole('checkbox', { name, exact: true });
+  await expect(page.locator('.group-number')).toHaveText(start.map((_, index) => String(index + 1)));
+  const middle = async (name: string): Promise<{ x: number; y: number }> => {
+    const box = (await category(name).locator('.tick').boundingBox())!;
+    return { x: box.x + box.width / 2, y: box.y + box.height / 2 };
+  };
+  await category(first).scrollIntoViewIfNeeded();
+  const [from, to] = [await middle(last), await middle(first)];
+  await page.mouse.move(from.x, from.y);
+  await page.mouse.down();
+  await page.mouse.move(to.x, to.y, { steps: 10 });
+  await page.mouse.up();
+  await bench.saved();
+  await expect.poll(async () => (await groups())[0]).toEqual(expect.arrayContaining([...start[0], last]));
+  await page.getByRole('button', { name: 'Undo' }).click();
+  await expect.poll(groups).toEqual(start);
+
+  await category(last).focus();
+  await page.keyboard.press('1');
+  await expect(bench.edits).toContainText(last);
+  await expect.poll(async () => (await groups())[0]).toEqual(expect.arrayContaining([...start[0], last]));
+  // Apart again, into the empty space beside the groups.
+  const [here, edge] = [await middle(last), (await page.locator('ts-bins-figure svg').first().boundingBox())!];
+  await page.mouse.move(here.x, here.y);
+  await page.mouse.down();
+  await page.mouse.move(edge.x + 40, here.y, { steps: 10 });
+  await expect(page.getByText('New group', { exact: true })).toBeVisible();
+  await page.mouse.up();
+  await expect.poll(groups).toContainEqual([last]);
+  await bench.reset();
+});
+
+test('what is looked at stands in the address', async ({ page, signInAs }) => {
+  await signInAs('modeller');
+  const bench = new BenchOnPage(page, await readDemoPlaces(page), 'oldest_line_months');
+  await bench.open();
+  await page.getByRole('radio', { name: 'Hold-out' }).click();
+  await page.getByRole('radio', { name: 'Bad rate' }).click();
+  await page.getByRole('radio', { name: 'By quarter' }).click();
+  await expect(page).toHaveURL(/axis=rows.*partition=holdOut.*measure=badRate.*period=quarter/);
+  await page.reload();
+  await expect(page.getByRole('table', { name: /^Bins,\s+Hold-out$/ })).toBeVisible();
+  await expect(page.getByRole('heading', { name: 'Bad rate of the bins by quarter of application' })).toBeVisible();
+});
+
 test('somebody else saves first: theirs or mine, and nothing is lost', async ({ page, browser, signIns, baseURL }) => {
   await signIn(page, signIns, 'modeller');
   const demo = await readDemoPlaces(page);
@@ -190,6 +341,7 @@ test('somebody else saves first: theirs or mine, and nothing is lost', async ({ 
   expect(stored.editList.map(({ kind, by }) => [kind, by])).toEqual([
     ['cut moved', 'Dora Second'],
     ['kept own', stored.changedBy],
+    ['cut moved', stored.changedBy],
   ]);
   expect(stored.changedBy).not.toBe('Dora Second');
   expect(stored.current.kind === 'numeric' && stored.current.edges[2]).toBe(kept);
@@ -200,16 +352,26 @@ test('somebody else saves first: theirs or mine, and nothing is lost', async ({ 
   await other.getByRole('dialog').getByRole('button', { name: 'Take theirs' }).click();
   await expect.poll(() => theirs.valueOf(theirs.cut(3))).toBe(kept);
   expect(await theirs.row('WOE')).toEqual(await mine.row('WOE'));
+  // What they had is one undo away, and one redo from what they took.
+  const taken = await theirs.valueOf(theirs.cut(2));
+  await other.getByRole('button', { name: 'Undo' }).click();
+  await expect.poll(() => theirs.valueOf(theirs.cut(2))).toBeGreaterThan(taken);
+  await other.getByRole('button', { name: 'Redo' }).click();
+  await expect.poll(() => theirs.valueOf(theirs.cut(2))).toBe(taken);
+  await theirs.saved();
   await other.context().close();
   await mine.reset();
 
   // Everything that was saved stands in the history with who made it and who took it back.
   const history = (await (await page.request.get(`/api/binnings/${demo.binningId}/edits`)).json()) as BinningHistory;
   const here = history.edits.filter(({ column }) => column === 'months_at_address');
-  expect(here.map(({ kind, by, ended }) => [kind, by === 'Dora Second', ended?.how])).toEqual([
+  const ends = here.map(({ kind, by, ended }) => [kind, by === 'Dora Second', ended?.how]);
+  expect(ends.slice(-3)).toEqual([
+    ['cut moved', false, 'undone'],
     ['kept own', false, 'undone'],
     ['cut moved', true, 'undone'],
   ]);
+  expect(here.every(({ inEffect }) => !inEffect)).toBe(true);
 });
 
 /** Another modeller of the demo's model, signed in on a page of their own. */
