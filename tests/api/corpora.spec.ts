@@ -29,9 +29,12 @@ describe('csv-spectrum', () => {
     const json = JSON.parse(readFileSync(join(spectrum, 'json', name.replace('.csv', '.json')), 'utf8')) as
       Record<string, string> | Record<string, string>[];
     const expected = [json].flat();
-    // In this one the corpus itself disagrees: its JSON has another telephone number than its CSV.
-    if (name === 'location_coordinates.csv') expected[0]['Contact Phone Number'] = '2095257564';
     const outcome = await reader.read(bytes, stated);
+    // In this one the corpus lost a character, which is never taken for data.
+    if (name === 'location_coordinates.csv') {
+      expect(outcome.refused).toMatchObject([{ code: 'lost-characters', where: { line: 2 } }]);
+      return;
+    }
     if (outcome.refused) throw new Error(JSON.stringify(outcome.refused));
     expect(outcome.rows).toEqual(reader.asStored(expected.map((row) => outcome.header.map((column) => row[column]))));
   });

@@ -65,6 +65,16 @@ describe('encodings', () => {
   });
 });
 
+describe('characters that were lost before', () => {
+  it('are refused with their lines, in the preview and when the file is read', async () => {
+    const text = file('town,bad', 30, (row) => `${row % 10 === 4 ? 'M\ufffdlaga' : 'Bath'},${row % 2}`);
+    const { problems, doubtful } = await preview(text);
+    expect(problems).toMatchObject([{ code: 'lost-characters', where: { line: 6, lines: '6, 16, 26', count: 3 } }]);
+    expect(doubtful.lines[0]).toMatchObject({ line: 6, record: 5, doubts: ['a character that was lost before (U+FFFD)'] });
+    expect(await refused(text)).toEqual(problems);
+  });
+});
+
 describe('rows and headers', () => {
   it('names the first twenty ragged lines and their number', async () => {
     const text = file('a,b,c', 60, (row) => (row % 2 === 0 ? '1,2,3' : '1,2'));
@@ -129,10 +139,35 @@ describe('rows and headers', () => {
     expect(await refused(`a,b\n1,2\n3,4\0\n`)).toMatchObject([
       { code: 'nul-byte', where: { line: 3, column: 'b', position: 2 } },
     ]);
-    expect(await refused(`a,b\n1,2\n${'x'.repeat(1_100_000)},4\n`)).toMatchObject([
-      { code: 'cell-too-large', where: { line: 3, column: 'a' } },
+    const most = 1024 ** 2;
+    expect(await refused(`a,b\n1,2\n${'x'.repeat(most + 1)},4\n`)).toMatchObject([
+      { code: 'cell-too-large', where: { line: 3, record: 2, column: 'a', position: 1 } },
     ]);
+    // One that is just as large is shown and read, by the fast reader and by the careful one.
+    for (const end of ['\n', '\r']) {
+      const text = ['a,b', '1,2', `${'x'.repeat(most)},4`, ''].join(end);
+      expect((await preview(text)).problems).toEqual([]);
+      expect((await modeller.sample(modelId, text)).run).toMatchObject({ state: 'succeeded', result: { rows: 2 } });
+    }
+  }, 60_000);
+
+  it('refuses a name that no definition could hold, with its place and length', async () => {
+    const text = `a,${'b'.repeat(1001)}\n1,2\n3,4\n`;
+    expect((await preview(text)).problems).toMatchObject([{ code: 'header-too-long', where: { position: 2, length: 1001 } }]);
+    expect(await refused(text)).toMatchObject([{ code: 'header-too-long', where: { line: 1, position: 2, length: 1001 } }]);
+    const { path, run } = await modeller.sample(modelId, file(`bad,${'b'.repeat(1000)}`, 40, (row) => `${row % 2},${row}`));
+    expect(run.state).toBe('succeeded');
+    await modeller.get(`${path}/draft`).expect(200);
   });
+
+  it('reads lines that end with a carriage return alone, of any size', async () => {
+    const text = file('note,amount,bad', 60_000, (row) => `${'x'.repeat(30)},${row % 900},${row % 2}`).replaceAll('\n', '\r');
+    expect(text.length).toBeGreaterThan(2 * 1024 * 1024);
+    const shown = await preview(text);
+    expect(shown).toMatchObject({ problems: [], header: ['note', 'amount', 'bad'], looked: { whole: false } });
+    expect(shown.looked.records).toBeGreaterThan(40_000);
+    expect((await modeller.sample(modelId, text)).run).toMatchObject({ state: 'succeeded', result: { rows: 60_000 } });
+  }, 60_000);
 
   it('states the limit of columns and what was found', async () => {
     const wide = Array.from({ length: 201 }, (_, k) => `c${k}`);

@@ -1,6 +1,12 @@
 import { z } from 'zod';
 import { ProblemItem } from '../problems/schema';
 
+/** Most characters of one field (UTF-16 code units, as both readers, the preview and replay count them): 1 MB where each is one byte. */
+export const mostCellCharacters = 1024 ** 2;
+
+/** Most characters of a heading: definitions and everything after them name columns by it. */
+export const mostHeadingCharacters = 1000;
+
 /** How the file is read: `data` of the specification without the fingerprint, which belongs to the file. */
 export const ReadingChoices = z
   .strictObject({

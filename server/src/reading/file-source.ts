@@ -31,6 +31,7 @@ export async function readForReplay(
     { encoding, delimiter, trim, dateOrder, missing },
     {
       ...options,
+      keepLost: true,
       mostRows: Number.MAX_SAFE_INTEGER,
       mostColumns: 100_000,
       columns: all,

@@ -1,3 +1,4 @@
+import { mostHeadingCharacters } from '@tallystone/contracts/samples/reading';
 import type { ReadingProblem } from './types';
 
 /** Names that an object cannot safely carry as a key: results are keyed by column. */
@@ -14,6 +15,14 @@ export function headerProblems(header: readonly string[], line: number): Reading
         code: 'blank-header',
         message: `Column ${position} has no name; name it in the file.`,
         where: { line, position },
+      });
+      return;
+    }
+    if (name.length > mostHeadingCharacters) {
+      problems.push({
+        code: 'header-too-long',
+        message: `The name of column ${position} has ${thousands(name.length)} characters; at most ${thousands(mostHeadingCharacters)} can be used. Shorten it in the file.`,
+        where: { line, position, length: name.length },
       });
       return;
     }
@@ -37,3 +46,5 @@ export function headerProblems(header: readonly string[], line: number): Reading
   });
   return problems;
 }
+
+const thousands = (value: number): string => value.toLocaleString('en-GB');

@@ -26,6 +26,7 @@ export class ProblemBook {
   private readonly cells = new Map<ReadingProblemCode, number>();
   private encoding: Encoding = 'utf-8';
   private lastNotInEncoding = 0;
+  private lastLost = 0;
 
   constructor(private readonly onDoubt?: (doubt: Doubt) => void) {}
 
@@ -51,6 +52,17 @@ export class ProblemBook {
     this.lastNotInEncoding = line;
     this.lineFault('not-in-encoding', line, 0, '');
     this.onDoubt?.({ code: 'not-in-encoding', line, record: null, what: `not ${ENCODING_NAMES[encoding]}` });
+  }
+
+  /**
+   * A sign that stands for a lost character (U+FFFD) is refused and not kept as a category: whoever wrote the file had text that is no longer in it, two
+   * different texts may have become one, and only another export brings them back.
+   */
+  lostCharacters(line: number): void {
+    if (this.lastLost === line) return;
+    this.lastLost = line;
+    this.lineFault('lost-characters', line, 0, '');
+    this.onDoubt?.({ code: 'lost-characters', line, record: null, what: 'a character that was lost before (U+FFFD)' });
   }
 
   unclosedQuote(line: number, record: number): void {
@@ -105,6 +117,8 @@ export class ProblemBook {
     if (code === 'ragged') return `${detail}${others}`;
     if (code === 'stray-quote')
       return `Line ${lines[0]} has text after a closing quote; a quote inside a quoted field is doubled.${others}`;
+    if (code === 'lost-characters')
+      return `Line ${lines[0]} holds the sign for a character that was lost before the file came here (U+FFFD). Export the file again from where it comes from, in UTF-8 or in the encoding of its source.${others}`;
     const offer = this.encoding === 'utf-8' ? '; read as Windows-1252?' : '.';
     return `Line ${lines[0]} is not ${ENCODING_NAMES[this.encoding]}${offer}${others}`;
   }

@@ -1,5 +1,7 @@
 import { describe, expect, it } from 'vitest';
-import { readColumns, readSegments, sniff, type ReadFile, type ReadingChoices } from './index';
+import { readColumns, readForReplay, readSegments, sniff, ReadingError, type ReadFile, type ReadingChoices } from './index';
+import { mostCellCharacters } from '@tallystone/contracts/samples/reading';
+import { csvOf, inventedSample, specificationOf } from '../replay/invented-sample';
 import type { ColumnOptions } from './index';
 
 const CHOICES: ReadingChoices = { encoding: 'utf-8', delimiter: ',', trim: true };
@@ -139,9 +141,9 @@ describe('reading a raw file', () => {
   it('finds NUL bytes and oversized cells by line and column', async () => {
     const file = await read('a,b\n1,x\0y\n', {}, {}, 3);
     expect(file.problems[0]).toMatchObject({ code: 'nul-byte', where: { line: 2, record: 1, position: 2, column: 'b' } });
-    const large = await read(`a,b\n1,2\n"${'x'.repeat(1_000_001)}",2\n`);
+    const large = await read(`a,b\n1,2\n"${'x'.repeat(mostCellCharacters + 1)}",2\n`);
     expect(large.problems[0]).toMatchObject({ code: 'cell-too-large', where: { line: 3, record: 2, position: 1, column: 'a' } });
-    expect((await read(`a,b\n${'x'.repeat(1_000_000)},2\n`)).problems).toEqual([]);
+    expect((await read(`a,b\n${'x'.repeat(mostCellCharacters)},2\n`)).problems).toEqual([]);
   });
 
   it('reads dates in a stated order, and names line, record and column of a day that does not exist', async () => {
@@ -232,5 +234,62 @@ describe('guessing how a file is written', () => {
     expect(western.preview).toEqual([['é', '2']]);
     expect(western.problems.map((problem) => problem.code)).toEqual(['not-in-encoding']);
     expect(sniff(Buffer.from('a,b\n1,é').subarray(0, -1)).encoding).toBe('utf-8');
+  });
+});
+
+describe('characters that were lost before', () => {
+  it('are a problem with their lines, once each, in every encoding and however the file is cut', async () => {
+    const text = 'a,b\nM\ufffdlaga,\ufffd\r\n"x\r\n\ufffd",é\r1,2\n';
+    for (const size of [1, 2, 3, 5, 1000])
+      for (const encoding of ['utf-8', 'utf-16le', 'utf-16be'] as const) {
+        const bytes = encoding === 'utf-8' ? Buffer.from(text) : Buffer.from(text, 'utf16le');
+        if (encoding === 'utf-16be') bytes.swap16();
+        const { problems } = await read(bytes, { encoding }, {}, size);
+        expect(problems.map(({ code, where }) => [code, where.lines])).toEqual([['lost-characters', [2, 4]]]);
+        expect(problems[0].message).toContain(
+          'Line 2 holds the sign for a character that was lost before the file came here (U+FFFD). Export the file again',
+        );
+      }
+  });
+
+  it('are told from bytes that are not of the encoding', async () => {
+    expect(codesOf(await read(Buffer.from([0x61, 0x0a, 0xe9, 0x0a])))).toEqual(['not-in-encoding']);
+    const both = await read(Buffer.concat([Buffer.from('a\n\ufffd\n'), Buffer.from([0xe9, 0x0a])]));
+    expect(both.problems.map(({ code, where }) => [code, where.line])).toEqual([
+      ['lost-characters', 2],
+      ['not-in-encoding', 3],
+    ]);
+  });
+});
+
+describe('what one cell and one heading hold', () => {
+  it('is limited alike for reading and for replay, which keeps a lost character of an earlier sample', async () => {
+    const [header, first, ...others] = csvOf(inventedSample(40)).toString('utf8').split('\n');
+    const withNote = (note: string): Buffer =>
+      Buffer.from(
+        [`${header},note`, `${first},${note}`, ...others.filter((line) => line !== '').map((line) => `${line},x`), ''].join('\n'),
+      );
+    const replayed = (note: string): Promise<unknown> => readForReplay(inPieces(withNote(note), 1 << 16), specificationOf());
+    const just = 'x'.repeat(mostCellCharacters);
+    expect(codesOf(await read(withNote(just)))).toEqual([]);
+    await expect(replayed(just)).resolves.toMatchObject({ rows: 40 });
+    await expect(replayed('\ufffd')).resolves.toMatchObject({ rows: 40 });
+    const over = await read(withNote(`${just}x`));
+    expect(over.problems).toMatchObject([{ code: 'cell-too-large', where: { line: 2, record: 1, column: 'note' } }]);
+    expect(over.problems[0].message).toContain('more than 1,048,576 characters');
+    const refusal = await replayed(`${just}x`).catch((thrown: unknown) => thrown);
+    expect(refusal).toBeInstanceOf(ReadingError);
+    expect((refusal as ReadingError).problems).toEqual(over.problems);
+  });
+
+  it('is limited for names, all that are too long together', async () => {
+    const found = await read(`${'x'.repeat(1000)},${'y'.repeat(1001)},c,${'z'.repeat(1200)}\n1,2,3,4\n`);
+    expect(found.problems).toMatchObject([
+      { code: 'header-too-long', where: { line: 1, position: 2, length: 1001 } },
+      { code: 'header-too-long', where: { line: 1, position: 4, length: 1200 } },
+    ]);
+    expect(found.problems[1].message).toBe(
+      'The name of column 4 has 1,200 characters; at most 1,000 can be used. Shorten it in the file.',
+    );
   });
 });

@@ -1,4 +1,5 @@
 import { createHash } from 'node:crypto';
+import { mostCellCharacters } from '@tallystone/contracts/samples/reading';
 import { ColumnBuilder, detached } from './dictionary';
 import { type DateReader, dateReader, noSuchDate } from './dates';
 import { decoderOf, lineEnds } from './encodings';
@@ -49,7 +50,7 @@ async function* read(
 ): AsyncGenerator<Segment, void, void> {
   const book = new ProblemBook(options.onDoubt);
   const builder = new SegmentBuilder(reading, options, book);
-  const scanner = new Scanner(reading.delimiter, reading.trim, options.mostCharacters ?? 1_000_000, builder);
+  const scanner = new Scanner(reading.delimiter, reading.trim, options.mostCharacters ?? mostCellCharacters, builder);
   const decoder = decoderOf(reading.encoding);
   const hash = createHash('sha256');
   const finish = (): void => {
@@ -58,11 +59,12 @@ async function* read(
     facts.problems = book.problems();
   };
   const onFault = (line: number): void => book.notInEncoding(line, reading.encoding);
+  const onLost = options.keepLost === true ? undefined : (line: number): void => book.lostCharacters(line);
 
   let first: Buffer | null = Buffer.alloc(0);
   const pieces = function* (chunk: Buffer): Generator<string> {
     for (let from = 0; from < chunk.length; from += PIECE)
-      yield decoder.decode(chunk.subarray(from, from + PIECE), scanner.line, onFault);
+      yield decoder.decode(chunk.subarray(from, from + PIECE), scanner.line, onFault, onLost);
   };
   for await (const incoming of stream) {
     options.signal?.throwIfAborted();
@@ -165,7 +167,13 @@ class SegmentBuilder implements RecordSink {
   }
 
   cellTooLarge(line: number, field: number): void {
-    this.book.cellTooLarge(line, this.recordNumber, field + 1, this.header[field], this.options.mostCharacters ?? 1_000_000);
+    this.book.cellTooLarge(
+      line,
+      this.recordNumber,
+      field + 1,
+      this.header[field],
+      this.options.mostCharacters ?? mostCellCharacters,
+    );
   }
 
   nul(line: number, field: number): void {

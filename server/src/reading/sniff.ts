@@ -1,4 +1,5 @@
 import { isUtf8 } from 'node:buffer';
+import { mostCellCharacters } from '@tallystone/contracts/samples/reading';
 import type { Encoding } from '@tallystone/contracts/specification/types';
 import { byteOrderMark, decoderOf, signatureProblem } from './encodings';
 import { headerProblems } from './header';
@@ -88,7 +89,7 @@ function guessEncoding(bytes: Buffer): Encoding {
 function firstRecords(text: string, delimiter: string): string[][] {
   const records: string[][] = [];
   const ignore = (): void => undefined;
-  const scanner = new Scanner(delimiter, true, 1_000_000, {
+  const scanner = new Scanner(delimiter, true, mostCellCharacters, {
     record: (fields, _line, blank) => {
       if (!blank && records.length < 500) records.push([...fields]);
     },

@@ -31,6 +31,8 @@ export interface ReadingProblem {
     lines?: number[];
     /** On how many lines or in how many cells. */
     count?: number;
+    /** Characters of a heading that is too long. */
+    length?: number;
   };
 }
 
@@ -42,6 +44,7 @@ export type ReadingProblemCode =
   | 'binary'
   | 'wrong-encoding'
   | 'not-in-encoding'
+  | 'lost-characters'
   | 'nul-byte'
   | 'cell-too-large'
   | 'ragged'
@@ -50,6 +53,7 @@ export type ReadingProblemCode =
   | 'blank-header'
   | 'duplicate-header'
   | 'reserved-header'
+  | 'header-too-long'
   | 'too-many-columns'
   | 'too-many-rows'
   | 'missing-column'
@@ -95,10 +99,15 @@ export interface ReadingOptions {
   /** Most rows and columns that are kept; beyond them is a problem that states what was found. Default: 1,000,000 and 200. */
   mostRows?: number;
   mostColumns?: number;
-  /** Most characters of one field. Default 1,000,000. */
+  /** Most characters of one field. Default `mostCellCharacters`. */
   mostCharacters?: number;
   /** Rows per segment. Default 65,536. */
   segmentRows?: number;
+  /**
+   * Take the sign that stands for a lost character (U+FFFD) as text. Replay does, because a sample may have been read before this was asked; what
+   * comes in is refused for it.
+   */
+  keepLost?: boolean;
   /** Only these columns are kept (all are checked). A name that the header lacks is a problem. */
   columns?: readonly string[];
   onProgress?: (progress: ReadingProgress) => void;

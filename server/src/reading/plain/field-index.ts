@@ -71,6 +71,7 @@ export class FieldIndex {
         at = this.quoted(bytes, start + 1, to, field);
         start = this.starts[field];
         end = this.ends[field];
+        if (end - start > mostBytes) throw new NotPlain('a long field');
         if (trim) while (isBlank(bytes[at], delimiter)) at++;
         if (special[bytes[at]] !== 1) throw new NotPlain('text after a closing quote');
       } else {
@@ -78,9 +79,10 @@ export class FieldIndex {
         let byte = bytes[at];
         while (byte > ordinary || special[byte] === 0) byte = bytes[++at];
         end = at;
+        // With the blanks after it, as the careful scanner counts.
+        if (end - start > mostBytes) throw new NotPlain('a long field');
         if (trim) while (end > start && isBlank(bytes[end - 1], delimiter)) end--;
       }
-      if (end - start > mostBytes) throw new NotPlain('a long field');
       if (field === rowEnd) throw new NotPlain('too many fields');
       starts[field] = start;
       ends[field] = end;

@@ -94,7 +94,7 @@ const sizes = fc.tuple(fc.integer({ min: 1, max: 40 }), fc.integer({ min: 1, max
 const cell = fc.oneof(
   fc.constantFrom('', '0', '1', '1.5', '1.50', '-0', '007', 'NA', 'a b', ' x', 'é', '€', '"', '"q"', ',', '\n', '\r\n', '\t'),
   fc.integer({ min: -99, max: 99 }).map(String),
-  fc.string({ unit: 'grapheme', maxLength: 6 }).map((text) => text.replaceAll('\0', '')),
+  fc.string({ unit: 'grapheme', maxLength: 6 }).map((text) => text.replaceAll(/[\0\ufffd]/g, '')),
 );
 
 describe('the fast reader', () => {
@@ -148,7 +148,9 @@ describe('the fast reader', () => {
 
   it('agrees on anything else, or leaves it', async () => {
     const wild = fc
-      .array(fc.constantFrom('a', '1', '.5', ' ', ',', '"', '\n', '\n', '\r\n', '\r', 'é', '\0', '\t', '-'), { maxLength: 60 })
+      .array(fc.constantFrom('a', '1', '.5', ' ', ',', '"', '\n', '\n', '\r\n', '\r', 'é', '\0', '\t', '-', '\ufffd'), {
+        maxLength: 60,
+      })
       .map((parts) => parts.join(''));
     const outcomes = { read: 0, 'not plain': 0 };
     await fc.assert(
@@ -185,6 +187,10 @@ describe('the fast reader', () => {
     expect(await not('a,b\n"1"x,2\n')).toContain('closing quote');
     expect(await not('a,b\n1,"2\n')).toContain('open quote');
     expect(await not('a,b\n1,\0\n')).toContain('NUL');
+    expect(await not('a,b\n1,\ufffd\n')).toContain('lost');
+    expect(await not('a,\ufffd\n1,2\n')).toContain('lost');
+    // The careful reader counts the blanks after a field.
+    expect(await not(`a,b\n1,x${' '.repeat(40)}\n`)).toContain('long field');
     expect(await not(`a,b\n1,${'x'.repeat(41)}\n`)).toContain('long field');
     expect(await not(`a,b\n${'1,2\n'.repeat(61)}`)).toContain('too many rows');
     expect(await not('a,b\n')).toContain('no rows');

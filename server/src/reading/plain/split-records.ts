@@ -1,6 +1,7 @@
 import { isUtf8 } from 'node:buffer';
 import { createHash } from 'node:crypto';
-import { decoderOf } from '../encodings';
+import { mostCellCharacters } from '@tallystone/contracts/samples/reading';
+import { decoderOf, holdsLost } from '../encodings';
 import { headerProblems } from '../header';
 import { openFile, openingBytes } from '../opening';
 import { Scanner } from '../scanner';
@@ -95,6 +96,7 @@ async function* split(
       if (records === 0) return at;
       const part = block.subarray(at, end);
       if (!isUtf8(part)) throw new NotPlain('bytes that are not UTF-8');
+      if (holdsLost(part)) throw new NotPlain('a character that was lost');
       gathered.add(part, records, most);
       at = end;
       if (gathered.rows === most) yield take();
@@ -227,11 +229,12 @@ function opened(first: Buffer, { encoding }: ReadingChoices): Buffer {
 
 function headerOf(line: Buffer, { delimiter, trim }: ReadingChoices): string[] {
   if (!isUtf8(line)) throw new NotPlain('bytes that are not UTF-8');
+  if (holdsLost(line)) throw new NotPlain('a character that was lost');
   let header: string[] = [];
   const unusual = (): never => {
     throw new NotPlain('an unusual header');
   };
-  const scanner = new Scanner(delimiter, trim, 1_000_000, {
+  const scanner = new Scanner(delimiter, trim, mostCellCharacters, {
     record: (fields) => {
       if (header.length > 0) unusual();
       header = [...fields];

@@ -50,7 +50,7 @@ export function testGeneratedFiles(runs: number): void {
         fc.constantFrom(',', ';', '\t', '|'),
         fc.constantFrom('\n', '\r\n', '\r'),
         async (rows, size, delimiter, end) => {
-          const clean = rows.map((row) => row.map((text) => text.replaceAll('\0', '')));
+          const clean = rows.map((row) => row.map((text) => text.replaceAll(/[\0\ufffd]/g, '')));
           const header = clean[0].map((_, index) => `c${index}`);
           const bytes = Buffer.from(stringify([header, ...clean], { delimiter, record_delimiter: end, quoted: true }));
           const file = await readTimed(bytes, { delimiter, size });

@@ -1,4 +1,4 @@
-import { mostDoubtfulLines } from '@tallystone/contracts/samples/reading';
+import { mostCellCharacters, mostDoubtfulLines } from '@tallystone/contracts/samples/reading';
 import { describe, expect, it } from 'vitest';
 import { previewOf } from './preview';
 
@@ -137,4 +137,32 @@ describe('the date order of a preview', () => {
     const missing = await look(['2024-04-03', '01/01/1900'], { missing: ['', '01/01/1900'] });
     expect(missing.choices.dateOrder).toBe('year-month-day');
   });
+});
+
+describe('a preview of the beginning of a file', () => {
+  const part = (text: string | Buffer, encoding: 'utf-8' | 'utf-16le' | 'utf-16be' = 'utf-8') =>
+    previewOf(Buffer.isBuffer(text) ? text : Buffer.from(text), false, { delimiter: ',', encoding });
+
+  it('ends with its last whole line, however lines end', async () => {
+    for (const end of ['\n', '\r\n', '\r']) {
+      const { looked, problems, header } = await part(['a,b', '1,2', '3,4', '5'].join(end));
+      expect([looked.records, problems, header]).toEqual([2, [], ['a', 'b']]);
+    }
+    const wide = Buffer.from('a,b\r1,2\r3\u0a00', 'utf16le');
+    expect((await part(wide, 'utf-16le')).looked.records).toBe(1);
+    expect((await part(Buffer.from(wide).swap16(), 'utf-16be')).looked.records).toBe(1);
+  });
+
+  it('keeps all of it where no line ends, without calling the cut a fault', async () => {
+    const bytes = Buffer.from('name,xé');
+    const { header, problems, looked } = await part(bytes.subarray(0, bytes.length - 1));
+    expect([header[0], problems, looked.records]).toEqual(['name', [], 0]);
+  });
+
+  it('refuses a cell that reading refuses, and none that it takes', async () => {
+    for (const [size, codes] of [[mostCellCharacters, []], [mostCellCharacters + 1, ['cell-too-large']]] as const) {
+      const { problems } = await part(`a,b\n1,${'x'.repeat(size)}\n`);
+      expect(problems.map(({ code }) => code)).toEqual(codes);
+    }
+  }); // prettier-ignore
 });

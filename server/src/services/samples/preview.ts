@@ -3,7 +3,7 @@ import type { Preview, PreviewRequest, ReadingChoices } from '@tallystone/contra
 import { type CsvError, parse } from 'csv-parse/sync';
 import type { Context } from '../../context';
 import { dateReader } from '../../reading/dates';
-import { decoderOf } from '../../reading/encodings';
+import { decoderOf, wholeLines } from '../../reading/encodings';
 import { numberReader, readSegments, sniff } from '../../reading/index';
 import { readChunks } from '../../storage/rawFiles';
 import { type DateEvidence, dateEvidence, dateQuestion, dateReason, decidedOrder } from './date-evidence';
@@ -140,9 +140,7 @@ async function problemsOf(
   choices: ReadingChoices,
 ): Promise<Pick<Preview, 'problems' | 'doubtful'> & { records: number }> {
   // Part of a file is cut after its last complete line, so that the cut itself is no problem.
-  const unit = choices.encoding.startsWith('utf-16') ? Buffer.from('\n', 'utf16le') : Buffer.from('\n');
-  if (choices.encoding === 'utf-16be') unit.swap16();
-  const end = whole ? bytes.length : bytes.lastIndexOf(unit) + unit.length;
+  const end = whole ? bytes.length : wholeLines(bytes, choices.encoding);
   async function* once(): AsyncGenerator<Buffer> {
     yield bytes.subarray(0, end);
   }
@@ -151,8 +149,8 @@ async function problemsOf(
   const file = readSegments(once(), choices, { onDoubt, onRecord });
   for await (const segment of file.segments) void segment;
   const facts = file.facts();
-  // A quoted line break at the cut looks like a quote that is never closed.
-  const problems = facts.problems.filter(({ code }) => whole || code !== 'unclosed-quote');
+  // A quoted line break at the cut looks like a quote that is never closed, and a first line that goes on beyond it like the only one.
+  const problems = facts.problems.filter(({ code }) => whole || !(code === 'unclosed-quote' || code === 'no-rows'));
   return {
     problems: problems.map(problemItem),
     records: facts.rows,

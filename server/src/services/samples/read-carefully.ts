@@ -18,7 +18,6 @@ export async function readCarefully(reading: Reading, readingId: string): Promis
   const file = readSegments(readRawFile(sequelize, config.keys.rawFiles.subarray(0, 32), sampleId, run.signal), choices, {
     mostRows: fileLimits.rows,
     mostColumns: fileLimits.columns,
-    mostCharacters: fileLimits.cellBytes,
     segmentRows,
     signal: run.signal,
     onProgress: ({ bytes }) => reading.progress(bytes),

@@ -1,4 +1,5 @@
 import { randomInt } from 'node:crypto';
+import { mostCellCharacters } from '@tallystone/contracts/samples/reading';
 import { fileLimits } from '@tallystone/contracts/samples/schema';
 import { DuplicateRows } from '../../profiling/duplicates';
 import type { Personal } from '../../profiling/personal';
@@ -51,7 +52,7 @@ export async function readPlainly(reading: Reading, readingId: string): Promise<
         ...records,
         header: file.facts().header,
         choices: { delimiter, trim, decimal, missing, dateOrder },
-        mostBytes: fileLimits.cellBytes,
+        mostBytes: mostCellCharacters,
         seed,
         styles,
         personal,
