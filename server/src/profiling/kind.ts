@@ -1,5 +1,6 @@
 import type { ColumnFlag } from '@tallystone/contracts/samples/columns';
 import type { ColumnKind } from '@tallystone/contracts/samples/reading';
+import { looksLikeAmount, looksLikeDateTime } from './quantity';
 import { type NumberFault, type NumberFormat, type NumberReader, ThousandsQuestion, isNumberSomehow, judgeFormat, numberReader } from '../reading/index';
 
 /** Rows of one distinct text of a column that is not missing. */
@@ -116,6 +117,17 @@ function doubtful(values: readonly Counted[], total: number, numbers: number, re
       : 'To use them as dates, read the file again with their date order';
     const finding = `Dates such as ${dates[0].text} (${order}). ${next}.`;
     return { against: finding, flags: [{ code: 'doubtful-dates', weight: 'look', finding }] };
+  }
+  const times = values.filter(({ text }) => looksLikeDateTime(text));
+  if (sum(times) >= mostlyNumbers * total) {
+    const finding = `Dates with a time such as ${times[0].text}. To use them as dates, write the day alone in the file (YYYY-MM-DD) and bring it in again.`;
+    return { against: finding, flags: [{ code: 'doubtful-dates', weight: 'look', finding }] };
+  }
+  const amounts = values.filter(({ text }) => looksLikeAmount(text));
+  // Beside such amounts stand plain ones, as 0 beside (12).
+  if (amounts.length > 0 && sum(amounts) + sum(values.filter(({ text }) => isNumberSomehow(text))) >= mostlyNumbers * total && sum(amounts) * 2 >= total) {
+    const finding = `Amounts with signs around the number (${listed(amounts, undefined, 3)}). To use them as numbers, write the number alone in the file, with - for what is negative, and bring it in again.`;
+    return { against: finding, flags: [{ code: 'numbers-as-text', weight: 'look', finding }] };
   }
   const judged = judgeFormat(
     values.map(({ text }) => text),

@@ -1,4 +1,5 @@
 import { createHmac } from 'node:crypto';
+import { looksLikeAmount, looksLikeTime } from './quantity';
 
 /** What speaks for a column that identifies people, from its name and a first part of its values. */
 export interface Personal {
@@ -69,8 +70,12 @@ export function personalColumn(
   const unique = rows >= enoughRows && distinct >= nearUnique * rows;
   if (unique && identifierName.test(spoken))
     return { kind: 'identifier', finding: `Its heading says identifier, and ${percent(distinct / rows)} of the values differ.` };
-  const dates = texts.filter((text) => /^\d{4}-\d{2}-\d{2}/.test(text)).length;
-  if (unique && numbers === 0 && dates * 2 < distinct)
+  // What says when or how much differs, too, and identifies nobody: such a column stays in clear, and its profile says what it looks like.
+  if (
+    unique &&
+    numbers === 0 &&
+    texts.filter((text) => !isMissing(text) && (looksLikeTime(text) || looksLikeAmount(text))).length * 2 < distinct
+  )
     return {
       kind: 'identifier',
       finding: `${percent(distinct / rows)} of its texts differ: each applicant has one of their own.`,

@@ -142,6 +142,35 @@ describe('what the quality table says of a column', () => {
   });
 });
 
+describe('what says when or how much', () => {
+  it.each([
+    ['2024-01-05 10:%:00', 'doubtful-dates'],
+    ['2024-01-05T10:%:00Z', 'doubtful-dates'],
+    ['2024-01-05T10:%:00.125+01:00', 'doubtful-dates'],
+    ['05/01/2024 10:%:33', 'doubtful-dates'],
+    ['\u20ac12%', 'numbers-as-text'],
+    ['12% \u20ac', 'numbers-as-text'],
+    ['\u22125%', 'numbers-as-text'],
+    ['(12%)', 'numbers-as-text'],
+    ['12.%%', 'numbers-as-text'],
+    ['EUR 1,2%', 'numbers-as-text'],
+  ])('is never hashed for being different: %s, and is flagged', (form, flag) => {
+    const texts = many(50, (k) => form.replace('%', String(k + 10)));
+    expect(personalColumn('c', texts, texts.map(() => 1), () => false)).toBeNull();
+    const found = profile(texts);
+    expect(found).toMatchObject({ kind: 'categorical', hashed: false, suggestedRole: 'not used' });
+    expect(found.flags.map(({ code }) => code)).toContain(flag);
+    expect(found.flags.find(({ code }) => code === flag)?.finding).toContain('bring it in again');
+  }); // prettier-ignore
+
+  it('is none of the numbers that people are known by', () => {
+    for (const form of ['123-45-6%', 'SM-%', '+44 (0)20 7946 0%', '12-34-%', 'A%', '%/B', '1:2:%x'])
+      expect(personalColumn('c', many(50, (k) => form.replace('%', String(k + 100))), many(50, () => '1').map(Number), () => false)?.kind, form).toBe('identifier');
+    // A heading that says so is believed whatever the values look like.
+    expect(personalColumn('phone', many(50, (k) => `(${k})`), many(50, () => '1').map(Number), () => false)?.kind).toBe('identifier');
+  }); // prettier-ignore
+});
+
 describe('columns that identify people', () => {
   const found = (name: string, values: readonly string[]) => {
     const { codes: rows, texts } = column(values);
