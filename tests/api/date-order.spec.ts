@@ -124,6 +124,24 @@ describe('dates written day first', () => {
     expect(replications).toMatchObject([{ matches: true, differing: 0, scoresEqual: true }]);
   }, 240_000);
 
+  it.each([
+    ['ISO 8601', (day: string, row: number) => `${day}${['T10:15:00Z', ' 10:15', 'T23:59:59.5-05:00'][row % 3]}`, 'year-month-day'],
+    ['the year first', (day: string) => day.replaceAll('-', '/'), 'year-month-day'],
+    ['the day first', (day: string) => `${day.split('-').reverse().join('/')} 10:15:33`, 'day-month-year'],
+  ] as const)('with a time, or with the year first, are proposed as their day and read so by both readers: %s', async (_, write, dateOrder) => {
+    const timed = iso.split('\n').map((line, row) => line.replace(/,(\d{4}-\d\d-\d\d),/, (__, day: string) => `,${write(day, row)},`)).join('\n');
+    const read = await modeller.sample(modelId, timed);
+    expect(read.run.state).toBe('succeeded');
+    const { choices, warnings } = (await modeller.post(`${read.path}/preview`).send({}).expect(200)).body as Preview;
+    expect(choices).toMatchObject({ dateOrder, dateTimes: 'day' });
+    expect(warnings).toMatchObject([{ code: 'date-times', where: { column: 'applied_on' } }]);
+    const expected = await columnsOf((await modeller.sample(modelId, iso)).path);
+    expect(await columnsOf(read.path)).toEqual(expected);
+    expect(await columnsOf((await modeller.sample(modelId, timed.replaceAll('\n', '\r'))).path)).toEqual(expected);
+    const kept = (await columnsOf((await modeller.sample(modelId, timed, { dateTimes: 'text', dateOrder: 'year-month-day' })).path)).columns.find(({ column }) => column === 'applied_on');
+    expect(kept).toMatchObject({ kind: 'categorical', hashed: false });
+  }, 120_000); // prettier-ignore
+
   it('are no dates where only ISO dates are', async () => {
     const { path } = await modeller.sample(modelId, dayFirst, { dateOrder: 'year-month-day' });
     const date = (await columnsOf(path)).columns.find(({ column }) => column === 'applied_on');

@@ -19,6 +19,8 @@ export const ReadingChoices = z
     missing: z.array(z.string().max(100)).max(50),
     /** How dates such as 03/04/2024 are to be read; left out, as in earlier readings: only ISO dates are dates. */
     dateOrder: z.enum(['year-month-day', 'day-month-year', 'month-day-year']).optional(),
+    /** Whether dates with a time, and those with the year first that are not written YYYY-MM-DD, are read as their day; left out, as in earlier readings: no. */
+    dateTimes: z.enum(['text', 'day']).optional(),
   })
   .meta({ id: 'ReadingChoices' });
 export type ReadingChoices = z.infer<typeof ReadingChoices>;
@@ -56,7 +58,7 @@ export const Preview = z
     /** Why each choice was proposed, one sentence each; for what the person chose only what the values say of the date order. */
     reasons: z.array(
       z.object({
-        choice: z.enum(['delimiter', 'encoding', 'decimal', 'thousands', 'trim', 'missing', 'dateOrder']),
+        choice: z.enum(['delimiter', 'encoding', 'decimal', 'thousands', 'trim', 'missing', 'dateOrder', 'dateTimes']),
         reason: z.string(),
       }),
     ),

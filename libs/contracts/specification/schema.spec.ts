@@ -87,6 +87,9 @@ describe('a specification', () => {
   it('states a date order only where it was given, so that older ones keep their fingerprint', () => {
     expect(accepted().data).not.toHaveProperty('dateOrder');
     expect(accepted({ data: { dateOrder: 'day-month-year' } }).data.dateOrder).toBe('day-month-year');
+    expect(accepted().data).not.toHaveProperty('dateTimes');
+    expect(accepted({ data: { dateTimes: 'day' } }).data.dateTimes).toBe('day');
+    expect(places({ data: { dateTimes: 'hour' } })).toEqual(['invalid-value data.dateTimes']);
     expect(places({ data: { dateOrder: 'day first' } })).toEqual(['invalid-value data.dateOrder']);
   });
 

@@ -8,6 +8,9 @@ export type Encoding = 'utf-8' | 'utf-16le' | 'utf-16be' | 'windows-1252';
 /** In which order the parts of a date stand. Year, month, day means ISO dates alone. */
 export type DateOrder = 'year-month-day' | 'day-month-year' | 'month-day-year';
 
+/** What a date with a time is: a text like any other, or its day. */
+export type DateTimes = 'text' | 'day';
+
 /** How the raw file is read. */
 export interface DataReading {
   /** SHA-256 of the file's bytes, lower-case hexadecimal; null = not tied to one file. */
@@ -24,6 +27,8 @@ export interface DataReading {
   missing: string[];
   /** Only ISO dates are dates when left out. An optional extension of the format. */
   dateOrder?: DateOrder | undefined;
+  /** Dates with a time stay texts when left out. An optional extension of the format. */
+  dateTimes?: DateTimes | undefined;
 }
 
 /**

@@ -120,7 +120,7 @@ function doubtful(values: readonly Counted[], total: number, numbers: number, re
   }
   const times = values.filter(({ text }) => looksLikeDateTime(text));
   if (sum(times) >= mostlyNumbers * total) {
-    const finding = `Dates with a time such as ${times[0].text}. To use them as dates, write the day alone in the file (YYYY-MM-DD) and bring it in again.`;
+    const finding = `Dates with a time such as ${times[0].text}. To use them as dates, read the file again with its dates with a time as days, as the preview proposes, or write the day alone in the file (YYYY-MM-DD) and bring it in again.`;
     return { against: finding, flags: [{ code: 'doubtful-dates', weight: 'look', finding }] };
   }
   const amounts = values.filter(({ text }) => looksLikeAmount(text));

@@ -1,6 +1,6 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { dateReader, noSuchDate, numbersOfDate } from './dates';
+import { dateReader, isDateTime, noSuchDate, numbersOfDate } from './dates';
 
 const of = (order: 'day-month-year' | 'month-day-year', missing: string[] = []) => {
   const read = dateReader(order, missing);
@@ -58,4 +58,61 @@ describe('dates in a stated order', () => {
       }),
     );
   });
+});
+
+describe('dates with a time', () => {
+  const read = dateReader(undefined, ['NA', '1900-01-01 00:00:00'], 'day');
+  const times = [
+    '10:00',
+    '9:05',
+    '10:00:00',
+    '23:59:60',
+    '10:00:00.5',
+    '10:00:00,123456',
+    '10:00Z',
+    '10:00:00+01:00',
+    '10:00:00 -0530',
+    '00:00:00.000+01',
+  ];
+
+  it('become the day that is written, and so do dates with the year first', () => {
+    for (const time of times)
+      for (const text of [`2024-04-03 ${time}`, `2024-04-03T${time}`, `2024/04/03 ${time}`, `2024.4.3T${time}`]) {
+        expect(read?.(text), text).toBe('2024-04-03');
+        expect(isDateTime(text), text).toBe(true);
+      }
+    for (const text of ['2024/04/03', '2024.04.03', '2024-4-3', '2024/4/03']) expect(read?.(text), text).toBe('2024-04-03');
+    // No zone moves the day.
+    expect(read?.('2024-04-03T23:30:00-05:00')).toBe('2024-04-03');
+  });
+
+  it('follow the stated order, and are nothing without one', () => {
+    for (const time of times) {
+      expect(dateReader('day-month-year', [], 'day')?.(`03/04/2024 ${time}`)).toBe('2024-04-03');
+      expect(dateReader('month-day-year', [], 'day')?.(`3.4.2024 ${time}`)).toBe('2024-03-04');
+      expect(read?.(`03/04/2024 ${time}`)).toBeNull();
+      expect(numbersOfDate(`03/04/2024 ${time}`)).toEqual([3, 4]);
+    }
+    expect(dateReader('day-month-year', [])?.('03/04/2024 10:00')).toBeNull();
+    expect(dateReader('day-month-year', [], 'day')?.('1/12/2024')).toBe('2024-12-01');
+  });
+
+  it('are refused where there is no such day or time', () => {
+    for (const text of [
+      '2024-02-30 10:00',
+      '2024-13-01T10:00',
+      '2023/02/29',
+      '2024-04-03 24:00',
+      '2024-04-03 10:60',
+      '2024-04-03 10:00:61',
+    ])
+      expect(read?.(text), text).toBe(noSuchDate);
+    expect(read?.('1900-01-01 00:00:00')).toBeNull();
+  });
+
+  it('are nothing else', () => {
+    for (const text of ['2024-04-03', '2024-02-31', '2024-04-03 ', '2024-04-03  10:00', '2024-04-03 10', '2024/04-03', '24/04/03', '2024-04-03 10:00 am', '2024-04-03-0017', '2024-04-03T', `2024-04-03 10:00:00.${'1'.repeat(10)}`, '٢٠٢٤/04/03', 'NA'])
+      expect(read?.(text), text).toBeNull();
+    expect(dateReader(undefined, [], 'text')).toBeNull();
+  }); // prettier-ignore
 });

@@ -128,7 +128,7 @@ class SegmentBuilder implements RecordSink {
     private readonly options: ReadingOptions,
     private readonly book: ProblemBook,
   ) {
-    this.readDate = dateReader(reading.dateOrder, reading.missing ?? []);
+    this.readDate = dateReader(reading.dateOrder, reading.missing ?? [], reading.dateTimes);
     this.segmentRows = options.segmentRows ?? 65_536;
     this.mostRows = options.mostRows ?? 1_000_000;
     this.mostColumns = options.mostColumns ?? 200;

@@ -1,4 +1,4 @@
-import type { DateOrder, Encoding } from '@tallystone/contracts/specification/types';
+import type { DateOrder, DateTimes, Encoding } from '@tallystone/contracts/specification/types';
 
 /** What reading a raw file needs to know, what it gives, and how it says what is wrong. See index.ts for how to use it. */
 
@@ -11,6 +11,8 @@ export interface ReadingChoices {
   trim: boolean;
   /** Fields in the form of a date in this order become ISO dates; left out, or year first: none is touched. */
   dateOrder?: DateOrder | undefined;
+  /** Whether dates with a time become their day; left out: none is touched. */
+  dateTimes?: DateTimes | undefined;
   /** Texts that mean "missing" and are therefore no dates, whatever their form. */
   missing?: readonly string[];
 }

@@ -16,7 +16,7 @@ export interface CodePayload {
   readonly bytes: Uint8Array;
   readonly rows: number;
   readonly header: readonly string[];
-  readonly choices: Pick<ReadingChoices, 'delimiter' | 'trim' | 'decimal' | 'missing' | 'dateOrder'>;
+  readonly choices: Pick<ReadingChoices, 'delimiter' | 'trim' | 'decimal' | 'missing' | 'dateOrder' | 'dateTimes'>;
   readonly mostBytes: number;
   readonly seed: number;
   /** Styles of the columns in earlier segments. */
@@ -68,6 +68,7 @@ export const codeSegment: Task<CodePayload, CodeAnswer> = (payload, control) => 
     sign: choices.decimal.charCodeAt(0),
     seed: payload.seed,
     dateOrder: choices.dateOrder,
+    dateTimes: choices.dateTimes,
     missing: choices.missing,
   };
   // The first segment has more rows than the others: what it took is not kept for them.

@@ -1,14 +1,18 @@
-import type { DateOrder } from '@tallystone/contracts/specification/types';
-import { type DateReader, dateReader, noSuchDate } from '../dates';
+import type { DateOrder, DateTimes } from '@tallystone/contracts/specification/types';
+import { type DateReader, dateReader, longestDateTime, noSuchDate } from '../dates';
 import { NotPlain } from './field-index';
 
 /** Bytes of an ISO date. */
 export const isoLength = 10;
 
 /** Null where only ISO dates are dates. */
-export function dateRewriter(order: DateOrder | undefined, missing: readonly string[]): DateRewriter | null {
-  const read = dateReader(order, missing);
-  return read && new DateRewriter(read);
+export function dateRewriter(
+  order: DateOrder | undefined,
+  missing: readonly string[],
+  dateTimes?: DateTimes,
+): DateRewriter | null {
+  const read = dateReader(order, missing, dateTimes);
+  return read && new DateRewriter(read, dateTimes === 'day' ? longestDateTime : isoLength);
 }
 
 /** Writes the ISO date of a field in the stated order: the careful reader's own rule, on bytes. */
@@ -17,7 +21,11 @@ export class DateRewriter {
   readonly bytes = new Uint8Array(isoLength);
   readonly words = new DataView(this.bytes.buffer);
 
-  constructor(private readonly read: DateReader) {}
+  /** @param longest bytes of the longest field that can be one */
+  constructor(
+    private readonly read: DateReader,
+    private readonly longest: number,
+  ) {}
 
   /**
    * @returns whether the field is such a date
@@ -25,7 +33,12 @@ export class DateRewriter {
    */
   rewrite(bytes: Uint8Array, start: number, end: number): boolean {
     const length = end - start;
-    if (length < 8 || length > isoLength || !(isSign(bytes[start + 1]) || isSign(bytes[start + 2]))) return false;
+    if (
+      length < 8 ||
+      length > this.longest ||
+      !(isSign(bytes[start + 1]) || isSign(bytes[start + 2]) || isSign(bytes[start + 4]))
+    )
+      return false;
     let text = '';
     for (let at = start; at < end; at++) text += String.fromCharCode(bytes[at]);
     const iso = this.read(text);

@@ -40,6 +40,7 @@ async function fast(bytes: Buffer, choices: ReadingChoices, size: number): Promi
         seed: 99,
         mostRows: segmentRows,
         dateOrder: choices.dateOrder,
+        dateTimes: choices.dateTimes,
         missing: choices.missing ?? [],
       });
       coder.begin([], []);
@@ -122,16 +123,16 @@ describe('the fast reader', () => {
     const date = fc.oneof(
       { weight: 8, arbitrary: fc.tuple(real, fc.constantFrom('/', '.', '-')).map(([[a, b], sign]) => `${a}${sign}${b}${sign}2024`) },
       { weight: 1, arbitrary: fc.tuple(part, part, fc.constantFrom('/', '.', '-')).map(([a, b, sign]) => `${a}${sign}${b}${sign}2023`) },
-      { weight: 4, arbitrary: fc.constantFrom('', '1', '2.5', 'NA', '2024-03-04', '04/03/24', '1.2.20244', '00/00/0000', '1/2-2024', 'é/1/2024') },
+      { weight: 4, arbitrary: fc.constantFrom('', '1', '2.5', 'NA', '2024-03-04', '04/03/24', '1.2.20244', '00/00/0000', '1/2-2024', 'é/1/2024', '2024/3/4', '2024-03-04 10:00:00', '4/3/2024 9:30', '2024-03-04T10:00:00.125+01:00') },
     );
     const table = fc
       .integer({ min: 1, max: 3 })
       .chain((width) => fc.array(fc.array(date, { minLength: width, maxLength: width }), { minLength: 1, maxLength: 30 }));
     const outcomes = { read: 0, 'not plain': 0 };
     await fc.assert(
-      fc.asyncProperty(table, sizes, fc.constantFrom('day-month-year' as const, 'month-day-year' as const), fc.boolean(), async (rows, cut, dateOrder, quoted) => {
+      fc.asyncProperty(table, sizes, fc.constantFrom('day-month-year' as const, 'month-day-year' as const, undefined), fc.constantFrom('day' as const, undefined), fc.boolean(), async (rows, cut, dateOrder, dateTimes, quoted) => {
         const bytes = Buffer.from(stringify([rows[0].map((_, place) => `c${place}`), ...rows], { quoted }));
-        const choices = { ...choicesOf(',', true), dateOrder, missing: ['', 'NA', '00/00/0000'] };
+        const choices = { ...choicesOf(',', true), dateOrder, dateTimes, missing: ['', 'NA', '00/00/0000'] };
         outcomes[await same(bytes, choices, cut)]++;
       }),
       { numRuns: 400 },
@@ -143,6 +144,11 @@ describe('the fast reader', () => {
     if (typeof twice === 'string') throw new Error(twice);
     expect(twice.segments.flat(2)).toEqual(['2024-04-03', '2024-04-03', '2024-04-03']);
     expect(new Set(twice.keys).size).toBe(1);
+    const timed = await fast(Buffer.from('a\n2024/3/4\n2024-03-04 10:00\n2024-03-04\n"2024-03-04T10:00:00Z"\n'), { ...choicesOf(',', true), dateTimes: 'day' }, 9);
+    if (typeof timed === 'string') throw new Error(timed);
+    expect(timed.segments.flat(2)).toEqual(['2024-03-04', '2024-03-04', '2024-03-04', '2024-03-04']);
+    expect(new Set(timed.keys).size).toBe(1);
+    expect(await fast(Buffer.from('a\n2024-03-04 25:00\n'), { ...choicesOf(',', true), dateTimes: 'day' }, 9)).toContain('does not exist');
     expect(await fast(Buffer.from('a\n31/4/2024\n'), { ...choicesOf(',', true), dateOrder: 'day-month-year' }, 9)).toContain('does not exist');
   }); // prettier-ignore
 

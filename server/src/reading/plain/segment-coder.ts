@@ -1,6 +1,6 @@
 import { type CodedColumn, ColumnCoder } from './column-coder';
 import { FieldIndex, type FieldForm } from './field-index';
-import type { DateOrder } from '@tallystone/contracts/specification/types';
+import type { DateOrder, DateTimes } from '@tallystone/contracts/specification/types';
 import { dateRewriter } from './date-rewriter';
 import type { NumberStyle } from './number-style';
 
@@ -13,6 +13,7 @@ export interface SegmentForm extends FieldForm {
   readonly mostRows: number;
   /** As in `ReadingChoices`. */
   readonly dateOrder?: DateOrder | undefined;
+  readonly dateTimes?: DateTimes | undefined;
   readonly missing?: readonly string[];
 }
 
@@ -35,7 +36,7 @@ export class SegmentCoder {
     this.one = new Int32Array(this.index.mostRows);
     this.two = new Int32Array(this.index.mostRows);
     this.keys = new Float64Array(form.mostRows);
-    const dates = dateRewriter(form.dateOrder, form.missing ?? []);
+    const dates = dateRewriter(form.dateOrder, form.missing ?? [], form.dateTimes);
     this.coders = Array.from(
       { length: form.width },
       (_, position) => new ColumnCoder(position, form.width, form.sign, form.mostRows, form.seed, dates),

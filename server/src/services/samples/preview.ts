@@ -2,7 +2,7 @@ import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import type { Preview, PreviewRequest, ReadingChoices } from '@tallystone/contracts/samples/reading';
 import { type CsvError, parse } from 'csv-parse/sync';
 import type { Context } from '../../context';
-import { dateReader } from '../../reading/dates';
+import { dateReader, isDateTime } from '../../reading/dates';
 import { decoderOf, wholeLines } from '../../reading/encodings';
 import { numberReader, readSegments, sniff } from '../../reading/index';
 import { readChunks } from '../../storage/rawFiles';
@@ -61,7 +61,9 @@ export async function previewOf(bytes: Buffer, whole: boolean, chosen: PreviewRe
   const missing = chosen.missing ?? proposeMissing(table.rows);
   const evidence = dateEvidence(table.header, table.rows, missing);
   const dateOrder = chosen.dateOrder ?? decidedOrder(evidence);
-  const choices: ReadingChoices = { ...partial, missing, ...(dateOrder && { dateOrder }) };
+  const timed = columnsWithTimes(table, missing);
+  const dateTimes = chosen.dateTimes ?? (timed.length > 0 ? 'day' : undefined);
+  const choices: ReadingChoices = { ...partial, missing, ...(dateOrder && { dateOrder }), ...(dateTimes && { dateTimes }) };
   const { problems, records, doubtful } = await problemsOf(bytes, whole, choices);
   const rows = withDates(table.rows, choices);
   const columns = table.header.map((column, position) => judgeColumn(column, position, rows, choices));
@@ -75,9 +77,39 @@ export async function previewOf(bytes: Buffer, whole: boolean, chosen: PreviewRe
     looked: { records, bytes: bytes.length, whole },
     // Nothing is guessed in silence: without an answer the file waits.
     problems: dateOrder === undefined ? [dateQuestion(evidence), ...problems] : problems,
-    warnings: columns.flatMap(({ warning }) => (warning ? [warning] : [])),
+    warnings: [
+      ...(dateTimes === 'day'
+        ? timed.map((one) => timesWarning(one, dateReader(dateOrder, missing, dateTimes)?.(one.example)))
+        : []),
+      ...columns.flatMap(({ warning }) => (warning ? [warning] : [])),
+    ],
   };
 }
+
+interface Timed {
+  readonly column: string;
+  readonly position: number;
+  readonly example: string;
+}
+
+/** A column counts as one of dates with a time when this share of its values are, as elsewhere. */
+const mostlyTimes = 0.95;
+
+function columnsWithTimes({ header, rows }: Table, missing: readonly string[]): Timed[] {
+  const skipped = new Set(['', ...missing]);
+  return header.flatMap((column, position) => {
+    const texts = rows.map(({ cells }) => cells[position] ?? '').filter((text) => !skipped.has(text));
+    const times = texts.filter(isDateTime);
+    return times.length > 0 && times.length >= mostlyTimes * texts.length ? [{ column, position, example: times[0] }] : [];
+  });
+}
+
+/** The time of day is left out while the file is read: whoever confirms the choices has seen that. */
+const timesWarning = ({ column, position, example }: Timed, day: unknown): ProblemItem => ({
+  code: 'date-times',
+  message: `${column}: ${example} is read as its day${typeof day === 'string' ? `, ${day}` : ''}. The time of day is left out, and the day is that of the zone in which it is written.`,
+  where: { column, position: position + 1 },
+});
 
 interface Table {
   header: string[];
@@ -85,8 +117,8 @@ interface Table {
 }
 
 /** The rows as they would be read: dates in the stated order as ISO dates. One that does not exist stays, for its problem to name. */
-function withDates(rows: Table['rows'], { dateOrder, missing }: ReadingChoices): Table['rows'] {
-  const read = dateReader(dateOrder, missing);
+function withDates(rows: Table['rows'], { dateOrder, dateTimes, missing }: ReadingChoices): Table['rows'] {
+  const read = dateReader(dateOrder, missing, dateTimes);
   if (read === null) return rows;
   const cell = (text: string): string => {
     const iso = read(text);
@@ -229,6 +261,15 @@ function reasonsFor(
           : 'Only empty fields; no other usual token stands in the rows looked at.',
     },
     { choice: 'dateOrder', reason: dateReason(evidence) },
+    ...(choices.dateTimes === 'day'
+      ? [
+          {
+            choice: 'dateTimes' as const,
+            reason:
+              'A column holds dates with a time, or dates with the year first that are not written YYYY-MM-DD: each is read as its day.',
+          },
+        ]
+      : []),
   ];
   return all.filter(({ choice }) => choice === 'dateOrder' || chosen[choice] === undefined);
 }
