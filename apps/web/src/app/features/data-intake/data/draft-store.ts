@@ -43,7 +43,9 @@ export class DraftStore {
   }
 
   async open(modelId: string, sampleId: string): Promise<void> {
-    if (this.place?.sampleId === sampleId && this.draft()) return;
+    // The file may have been read again, or somebody else may have saved: only what was changed here is left as it is.
+    if (this.place?.sampleId === sampleId && this.draft() && this.state() !== 'saved') return;
+    if (this.place?.sampleId !== sampleId) this.draft.set(null);
     this.place = { modelId, sampleId };
     await this.reload();
   }
@@ -53,10 +55,12 @@ export class DraftStore {
     if (!this.place) return;
     try {
       const { value, etag } = await this.samples.draft(this.place.modelId, this.place.sampleId);
+      // The same draft, under which its rows were counted already.
+      const same = this.draft() !== null && etag === this.etag && this.mine() === null;
       this.etag = etag;
       this.draft.set(value);
       this.mine.set(null);
-      this.result.set(null);
+      if (!same) this.result.set(null);
       this.state.set('saved');
       this.failure.set(null);
     } catch (error) {

@@ -19,6 +19,7 @@ import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { SortInAddress } from '../../../ui/sort-in-address';
 import { Tombstone } from '../../../ui/tombstone';
+import { DecisionNotice } from '../../../ui/decision-notice';
 import { DictionaryStore } from '../data/dictionary-store';
 import { DraftStore } from '../data/draft-store';
 import { type ColumnProfile, columnsOf, oneSample } from '../data/samples';
@@ -26,6 +27,7 @@ import { CarriedNote } from '../ui/carried-note';
 import { ReadAgainNote } from '../ui/read-again-note';
 import { ColumnEditor } from '../ui/column-editor';
 import { DictionaryEditor } from '../ui/dictionary-editor';
+import { WordsConflictNote } from '../ui/words-conflict';
 import { flagsOf, mostFrequentOf, rangeOf } from '../ui/findings';
 import { SampleSteps } from '../ui/sample-steps';
 import { SaveStateNote } from '../ui/save-state';
@@ -53,6 +55,8 @@ interface Row {
     ColumnEditor,
     DenseTable,
     DictionaryEditor,
+    WordsConflictNote,
+    DecisionNotice,
     PageHeader,
     ProblemList,
     SampleSteps,
@@ -82,10 +86,19 @@ interface Row {
       <ts-problems [error]="columns.error()" />
       <ts-problems [error]="draft.error()" />
       <ts-problems [error]="words.error()" next="Mend the file and import it again: nothing of it was taken." [limit]="60" />
-      @if (words.stale()) {
-        <p role="status">
-          Someone else saved the dictionary meanwhile. It was read anew: make your last change again if it still holds.
-        </p>
+      @for (conflict of words.conflicts(); track conflict.mine.column) {
+        <ts-words-conflict
+          [conflict]="conflict"
+          (theirs)="words.takeTheirs(conflict.mine.column)"
+          (mine)="words.keepMine(conflict.mine.column)"
+        />
+      }
+      @if (words.fileRefused()) {
+        <ts-decision>
+          Someone else saved the dictionary meanwhile. Your file has not been imported: leave theirs, or import the file over it.
+          <button tsDecide matButton="outlined" type="button" (click)="words.dropFile()">Leave theirs</button>
+          <button tsDecide matButton="outlined" type="button" (click)="importAgain()">Import mine</button>
+        </ts-decision>
       }
       @if (words.dictionary()?.carried; as carried) {
         <ts-carried-note [carried]="carried" />
@@ -298,6 +311,15 @@ export class ColumnsPage {
     await this.draft.flush();
     const taken = await this.words.importFile(await file.text());
     picker.value = '';
+    await this.afterImport(taken);
+  }
+
+  protected async importAgain(): Promise<void> {
+    await this.draft.flush();
+    await this.afterImport(await this.words.importAgain());
+  }
+
+  private async afterImport(taken: boolean): Promise<void> {
     if (!taken) return;
     this.imported.set(true);
     await this.draft.reload();
