@@ -6,6 +6,7 @@ import { firstValueFrom } from 'rxjs';
 import type { DetailedError, Upload } from 'tus-js-client';
 import { Problem } from '../../../core/http/problem';
 import { fingerprint } from './file-fingerprint';
+import { Pace } from './pace';
 import type { UploadSummary } from './samples';
 
 /** A file on its way from this page. */
@@ -13,6 +14,10 @@ export interface Sending {
   readonly fileName: string;
   readonly size: number;
   readonly sent: number;
+  /** Bytes of the file that were compared so far with what arrived earlier. */
+  readonly compared: number;
+  /** Seconds until all of it is sent, at the rate since it began or went on; null while nobody can tell. */
+  readonly secondsLeft: number | null;
   /**
    * comparing: what the server has is compared with the file. waiting: the connection is away and is tried again. differs: what the server has
    * is not of this file as it is now.
@@ -35,6 +40,7 @@ export class Uploads {
   private readonly token = inject(HttpXsrfTokenExtractor);
   private readonly http = inject(HttpClient);
   private readonly now = signal<Sending | null>(null);
+  private readonly pace = new Pace();
   private upload: Upload | null = null;
   /** Ends the hashing of a file that is no longer sent. */
   private hashing: AbortController | null = null;
@@ -53,11 +59,23 @@ export class Uploads {
     const resumed = unfinished.find(({ fileName, size }) => fileName === file.name && size === file.size);
     if (!resumed) return this.transfer(modelId, file, null);
     const url = `/api/models/${modelId}/uploads/${resumed.id}`;
-    this.now.set({ fileName: file.name, size: file.size, sent: resumed.offset, state: 'comparing', problem: null });
+    this.now.set({
+      fileName: file.name,
+      size: file.size,
+      sent: resumed.offset,
+      compared: 0,
+      secondsLeft: null,
+      state: 'comparing',
+      problem: null,
+    });
     const stop = this.hashAnew();
     try {
       const arrived = await firstValueFrom(this.http.get<ArrivedPart>(`${url}/arrived`));
-      const ours = await fingerprint(file, arrived.offset, { signal: stop });
+      this.pace.begin(0);
+      const ours = await fingerprint(file, arrived.offset, {
+        signal: stop,
+        onProgress: (compared) => this.patch({ compared, secondsLeft: this.pace.left(compared, arrived.offset) }),
+      });
       if (ours !== arrived.sha256) return this.differs(modelId, file, url);
     } catch (cause) {
       if (stop.aborted) return 'dropped';
@@ -78,10 +96,13 @@ export class Uploads {
   private async transfer(modelId: string, file: File, url: string | null): Promise<'arrived' | 'differs'> {
     const tus = await import('tus-js-client');
     this.other = null;
+    this.pace.stop();
     this.now.update((sending) => ({
       fileName: file.name,
       size: file.size,
       sent: url === null ? 0 : (sending?.sent ?? 0),
+      compared: 0,
+      secondsLeft: null,
       state: 'sending',
       problem: null,
     }));
@@ -109,10 +130,14 @@ export class Uploads {
           if (ofThePage(error)) return false;
           const status = statusOf(error);
           const again = status === 0 || status === 409 || status === 423 || status === 429 || status >= 500;
-          if (again) this.patch({ state: 'waiting' });
+          if (again) this.patch({ state: 'waiting', secondsLeft: null });
           return again;
         },
-        onProgress: (sent) => this.patch({ sent, state: 'sending' }),
+        onProgress: (sent) => {
+          // What went out before a pause says nothing of the rate after it.
+          if (this.now()?.state !== 'sending' || !this.pace.begun) this.pace.begin(sent);
+          this.patch({ sent, state: 'sending', secondsLeft: this.pace.left(sent, file.size) });
+        },
         onSuccess: () => {
           this.now.set(null);
           resolve('arrived');
@@ -151,10 +176,12 @@ export class Uploads {
       return;
     }
     await this.upload?.abort();
-    this.patch({ state: 'stopped' });
+    this.pace.stop();
+    this.patch({ state: 'stopped', secondsLeft: null });
   }
 
   goOn(): void {
+    this.pace.stop();
     this.patch({ state: 'sending', problem: null });
     this.upload?.start();
   }

@@ -1,12 +1,18 @@
 import { ChangeDetectionStrategy, Component, computed, input, output, signal } from '@angular/core';
 import { MatButtonModule } from '@angular/material/button';
-import { bytes, share } from '../../../ui/numbers';
+import { bytes, duration, share } from '../../../ui/numbers';
+
+/** Seconds: what ends sooner is over before it was read. */
+const shownFrom = 2;
 
 /** What is on its way, as far as this panel shows it. */
 export interface UploadView {
   readonly fileName: string;
   readonly size: number;
   readonly sent: number;
+  /** Of what arrived earlier, how much was compared with the file. */
+  readonly compared: number;
+  readonly secondsLeft: number | null;
   readonly state: 'comparing' | 'sending' | 'waiting' | 'stopped' | 'differs' | 'failed';
 }
 
@@ -25,7 +31,7 @@ export interface UploadView {
         <div
           class="bar"
           role="progressbar"
-          aria-label="Received"
+          [attr.aria-label]="view.state === 'comparing' ? 'Compared' : 'Received'"
           aria-valuemin="0"
           aria-valuemax="100"
           [attr.aria-valuenow]="percent()"
@@ -126,18 +132,22 @@ export class UploadPanel {
 
   protected readonly percent = computed(() => {
     const view = this.sending();
-    return view && view.size > 0 ? Math.floor((100 * view.sent) / view.size) : 0;
+    if (!view) return 0;
+    const [done, whole] = view.state === 'comparing' ? [view.compared, view.sent] : [view.sent, view.size];
+    return whole > 0 ? Math.floor((100 * done) / whole) : 0;
   });
   protected readonly words = computed(() => {
     const view = this.sending();
     if (!view) return '';
     const part = `${bytes(view.sent)} of ${bytes(view.size)} (${share(view.size > 0 ? view.sent / view.size : 0, 0)})`;
-    if (view.state === 'comparing') return `${bytes(view.sent)} have arrived earlier: compared with this file before it goes on`;
+    const left = view.secondsLeft === null || view.secondsLeft < shownFrom ? '' : `, about ${duration(view.secondsLeft)} left`;
+    if (view.state === 'comparing')
+      return `${bytes(view.sent)} have arrived earlier: compared with this file before it goes on, ${bytes(view.compared)} so far${left}`;
     if (view.state === 'differs') return `${bytes(view.sent)} have arrived, of another file`;
     if (view.state === 'waiting') return `${part}: the connection is away and is tried again by itself`;
     if (view.state === 'stopped') return `${part}: stopped; what has arrived is kept`;
     if (view.state === 'failed') return `${part}: not taken`;
-    return part;
+    return part + left;
   });
 
   protected hover(event: DragEvent, over: boolean): void {
