@@ -109,6 +109,10 @@ export function columnQualityOf(
 export class Samples {
   private readonly http = inject(HttpClient);
 
+  columnQuality(modelId: string, sampleId: string, column: string): Promise<ColumnQualityDetail> {
+    return firstValueFrom(this.http.get<ColumnQualityDetail>(`${of(modelId, sampleId)}/quality/column`, { params: { column } }));
+  }
+
   list(modelId: string): Promise<SampleList> {
     return firstValueFrom(this.http.get<SampleList>(`/api/models/${modelId}/samples`));
   }

@@ -125,6 +125,29 @@ describe('QualityPage', () => {
     expect(page().querySelector('li.waits')).not.toBeNull();
   });
 
+  it('prints the figures of every flagged column that takes part, and then shows the chosen one again', async () => {
+    const more = { ...report, columns: [...report.columns, column('age'), column('note', { role: 'not used' })] };
+    const raised = (name: string): QualityFlag => ({ ...flag, column: name });
+    await open({ report: { ...more, flags: [flag, raised('age'), raised('note'), { ...raised('income'), weight: 'note' }] } });
+    const titles = (): (string | undefined)[] =>
+      [...page().querySelectorAll('ts-column-quality:not(.ts-no-print) ts-quality-groups')].map((part) => /fee|age|income|note/.exec(part.textContent)?.[0]);
+    const printed: (string | undefined)[] = [];
+    const print = vi.spyOn(globalThis, 'print').mockImplementation(() => void printed.push(...titles()));
+    await press('Print');
+    for (const name of ['fee', 'age']) {
+      const asked = await vi.waitUntil(() => server.match(({ url, params }) => url === `${address}/quality/column` && params.get('column') === name).at(0));
+      asked.flush({ ...column(name), groups: [], histogram: null, months: [] });
+    }
+    await vi.waitFor(() => {
+      fixture.detectChanges();
+      expect(print).toHaveBeenCalledOnce();
+    });
+    expect(printed).toEqual(['fee', 'age']);
+    await settled();
+    expect(titles()).toEqual(['fee']);
+    print.mockRestore();
+  });
+
   it('offers no answer to those who only read', async () => {
     await open({ abilities: [] });
     expect(await outside.getAllHarnesses(MatButtonHarness.with({ text: /^(Accept|Not used)$/ }))).toEqual([]);

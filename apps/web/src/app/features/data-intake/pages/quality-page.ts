@@ -1,4 +1,15 @@
-import { ChangeDetectionStrategy, Component, type ElementRef, computed, inject, input, signal, viewChild } from '@angular/core';
+import {
+  ChangeDetectionStrategy,
+  Component,
+  type ElementRef,
+  computed,
+  inject,
+  input,
+  signal,
+  viewChild,
+  Injector,
+  afterNextRender,
+} from '@angular/core';
 import { takeUntilDestroyed } from '@angular/core/rxjs-interop';
 import { MatButtonModule } from '@angular/material/button';
 import { Router, RouterLink } from '@angular/router';
@@ -18,12 +29,10 @@ import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { SortInAddress } from '../../../ui/sort-in-address';
 import { Tombstone } from '../../../ui/tombstone';
-import { type ColumnQuality, Samples, columnQualityOf, oneSample, qualityOf } from '../data/samples';
+import { type ColumnQuality, type ColumnQualityDetail, Samples, columnQualityOf, oneSample, qualityOf } from '../data/samples';
 import { plain } from '../ui/findings';
+import { ColumnQualityFigures } from '../ui/column-quality';
 import { type AskedAnswer, QualityFlags } from '../ui/quality-flags';
-import { QualityGroupMonths } from '../ui/quality-group-months';
-import { QualityGroups } from '../ui/quality-groups';
-import { QualityHistogram } from '../ui/quality-histogram';
 import { type MonthValue, QualityMonths } from '../ui/quality-months';
 import { flagTitle, waits } from '../ui/quality-words';
 import { SampleSteps } from '../ui/sample-steps';
@@ -38,6 +47,7 @@ import { SampleSteps } from '../ui/sample-steps';
     RouterLink,
     MatButtonModule,
     CellTemplate,
+    ColumnQualityFigures,
     CountPipe,
     DenseTable,
     EmptyState,
@@ -45,9 +55,6 @@ import { SampleSteps } from '../ui/sample-steps';
     PageHeader,
     ProblemList,
     QualityFlags,
-    QualityGroupMonths,
-    QualityGroups,
-    QualityHistogram,
     QualityMonths,
     RunProgress,
     SampleSteps,
@@ -58,6 +65,7 @@ import { SampleSteps } from '../ui/sample-steps';
 })
 export class QualityPage {
   private readonly samples = inject(Samples);
+  private readonly injector = inject(Injector);
   private readonly runs = inject(Runs);
   private readonly ask = inject(Ask);
   private readonly router = inject(Router);
@@ -97,6 +105,15 @@ export class QualityPage {
   );
   protected readonly answering = new Task();
   protected readonly starting = new Task();
+  protected readonly printing = new Task();
+  /** What is printed in the place of the chosen column; empty but while it is. */
+  protected readonly printed = signal<readonly ColumnQualityDetail[]>([]);
+  private readonly flagged = computed(() => {
+    const flags = this.report()?.flags ?? [];
+    const concerned = (row: ColumnQuality): boolean =>
+      takesPart(row.role) && flags.some(({ column, weight }) => column === row.column && weight !== 'note');
+    return (this.report()?.columns ?? []).filter(concerned).map(({ column }) => column);
+  });
   private readonly started = signal<string | null>(null);
   protected readonly run = this.runs.run(() => this.started() ?? (this.state.hasValue() ? this.state.value().runId : null));
   private readonly columnPart = viewChild<ElementRef<HTMLElement>>('part');
@@ -142,19 +159,6 @@ export class QualityPage {
       : 'no more than a year, so no month is compared with another';
     return `${plural(report.months.length, 'month')} from ${first.month} to ${last.month}; ${compared}.`;
   });
-  protected readonly stability = computed<readonly MonthValue[]>(() =>
-    (this.detail.hasValue() ? this.detail.value().months : []).map(({ month, psi, rows }) => ({
-      month,
-      value: psi,
-      words: `${month}: ${psi === null ? (rows === 0 ? 'no rows' : 'within the first year') : `PSI ${psi.toFixed(3)}`}`,
-    })),
-  );
-  protected readonly driftFinding = computed(() => {
-    const drift = this.detail.hasValue() ? this.detail.value().drift : null;
-    if (!drift) return 'No month has enough rows to be compared with the first year.';
-    return `PSI is largest in ${drift.month} (${drift.psi.toFixed(3)}); by chance it would stay below ${drift.critical.toFixed(3)}.`;
-  });
-
   constructor() {
     this.runs.finished
       .pipe(
@@ -178,8 +182,17 @@ export class QualityPage {
     this.columnPart()?.nativeElement.scrollIntoView({ block: 'start' });
   }
 
-  protected print(): void {
+  /** On paper nobody chooses a column: the figures of every one that a flag of some weight concerns are printed. */
+  protected async print(): Promise<void> {
+    const details = await this.printing.run(() =>
+      Promise.all(this.flagged().map((column) => this.samples.columnQuality(this.modelId(), this.sampleId(), column))),
+    );
+    if (!details) return;
+    this.printed.set(details);
+    // The figures measure the room that they have before they are drawn.
+    await new Promise((resolve) => afterNextRender(() => setTimeout(resolve, 100), { injector: this.injector }));
     globalThis.print();
+    this.printed.set([]);
   }
 
   protected async make(): Promise<void> {
