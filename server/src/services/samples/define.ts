@@ -83,9 +83,13 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
   };
 }
 
-/** Year, month, day is what a specification says by leaving the order out, so that it keeps the fingerprint that it always had. */
-function withoutDefault({ dateOrder, ...reading }: ReadingChoices): ReadingChoices {
-  return dateOrder === undefined || dateOrder === 'year-month-day' ? reading : { ...reading, dateOrder };
+/** What a specification says by leaving it out, so that it keeps the fingerprint that it always had: year, month, day, and times as texts. */
+function withoutDefault({ dateOrder, dateTimes, ...reading }: ReadingChoices): ReadingChoices {
+  return {
+    ...reading,
+    ...(dateOrder === undefined || dateOrder === 'year-month-day' ? {} : { dateOrder }),
+    ...(dateTimes === 'day' && { dateTimes }),
+  };
 }
 
 /** What is known beside the profiles: how numbers are written, and what is wrong with the weights. */

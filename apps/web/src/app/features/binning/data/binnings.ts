@@ -115,6 +115,13 @@ export class Binnings {
     return firstValueFrom(this.http.post<CharacteristicList>(`/api/binnings/${binningId}/reclassings`, asked));
   }
 
+  /** For more than a few: the run that does it. */
+  startReclassing(binningId: string, asked: Reclass, key: string): Promise<{ runId: string }> {
+    return firstValueFrom(
+      this.http.post<{ runId: string }>(`/api/binnings/${binningId}/reclassing-runs`, asked, { headers: idempotent(key) }),
+    );
+  }
+
   setInclusion(binningId: string, asked: SetInclusion): Promise<CharacteristicList> {
     return firstValueFrom(this.http.post<CharacteristicList>(`/api/binnings/${binningId}/inclusions`, asked));
   }

@@ -10,6 +10,8 @@ import { Subject, debounceTime, filter, firstValueFrom } from 'rxjs';
 import { CurrentModel } from '../../../core/current-model';
 import { columnLabels } from '../../../core/column-labels';
 import { Runs } from '../../../core/events/runs';
+import { newIdempotencyKey } from '../../../core/http/etag';
+import { mostReclassedAtOnce } from '@tallystone/contracts/binnings/limits';
 import { Task } from '../../../core/task';
 import { Ask } from '../../../ui/ask';
 import type { Column } from '../../../ui/column';
@@ -79,6 +81,9 @@ export class CharacteristicsPage {
     () => this.current.can('develop') && this.binning.hasValue() && this.binning.value().erased === null,
   );
   protected readonly run = this.runs.run(() => (this.binning.hasValue() ? this.binning.value().runId : null));
+  /** The run that classes many characteristics anew, while there is one; one that failed stays until the page is left. */
+  private readonly reclassingId = signal<string | null>(null);
+  protected readonly reclassing = this.runs.run(() => this.reclassingId());
   protected readonly all = computed(() => (this.list.hasValue() ? this.list.value().characteristics : null));
   protected readonly rows = computed(() => filtered(this.all() ?? [], this.part(), this.search() ?? '', this.labels()));
   protected readonly finding = computed(() => (this.list.hasValue() ? this.list.value().finding : null));
@@ -189,11 +194,14 @@ export class CharacteristicsPage {
       .pipe(
         filter(
           (run) =>
-            ['binning.class', 'binning.complete', 'binning.correlate'].includes(run.kind) && run.entityId === this.binningId(),
+            ['binning.class', 'binning.complete', 'binning.correlate', 'binning.reclass'].includes(run.kind) && run.entityId === this.binningId(),
         ),
         takeUntilDestroyed(),
       )
-      .subscribe(() => this.reload());
+      .subscribe((run) => {
+        if (run.kind === 'binning.reclass' && run.state !== 'failed') this.reclassingId.set(null);
+        this.reload();
+      });
   }
 
   protected readonly identify = (row: CharacteristicSummary): string => row.id;
@@ -270,9 +278,14 @@ export class CharacteristicsPage {
     const answer = await firstValueFrom(reference.afterClosed());
     if (!answer) return;
     const { fineClasses: _fineClasses, ...constraints } = answer.constraints;
-    await this.change(() =>
-      this.binnings.reclass(this.binningId(), { characteristics: references(picked), constraints, reason: answer.reason }),
-    );
+    const asked = { characteristics: references(picked), constraints, reason: answer.reason };
+    if (picked.length <= mostReclassedAtOnce) await this.change(() => this.binnings.reclass(this.binningId(), asked));
+    else
+      await this.changing.run(async () => {
+        const { runId } = await this.binnings.startReclassing(this.binningId(), asked, newIdempotencyKey());
+        this.reclassingId.set(runId);
+        this.chosen.set(new Set());
+      });
   }
 
   protected async openOutOfTime(reason: string): Promise<void> {

@@ -58,6 +58,16 @@ describe('the reading choices', () => {
     expect(await (await select('Date order')).isDisabled()).toBe(true);
   });
 
+  it('ask what becomes of a time only where there is one', async () => {
+    expect(await loader.getHarnessOrNull(MatFormFieldHarness.with({ floatingLabelText: 'Dates with a time' }))).toBeNull();
+    fixture.componentRef.setInput('choices', { ...choices, dateTimes: 'day' });
+    const times = await select('Dates with a time');
+    expect(await times.getValueText()).toContain('Their day');
+    await times.open();
+    await times.clickOptions({ text: 'Text, as they stand' });
+    expect(told).toEqual([{ dateTimes: 'text' }]);
+  });
+
   it('show the other choices, and tell what is changed of them alone', async () => {
     expect(await (await select('Delimiter')).getValueText()).toBe('Semicolon ;');
     const thousands = await select('Thousands sign');

@@ -87,6 +87,16 @@ type Choice = Preview['reasons'][number]['choice'];
         </mat-select>
         <mat-hint>{{ why('dateOrder') }}</mat-hint>
       </mat-form-field>
+      @if (choices().dateTimes; as dateTimes) {
+        <mat-form-field>
+          <mat-label>Dates with a time</mat-label>
+          <mat-select [value]="dateTimes" [disabled]="disabled()" (selectionChange)="changed.emit({ dateTimes: $event.value })">
+            <mat-option value="day">Their day (2024-04-03 10:15 is 2024-04-03)</mat-option>
+            <mat-option value="text">Text, as they stand</mat-option>
+          </mat-select>
+          <mat-hint>{{ why('dateTimes') }}</mat-hint>
+        </mat-form-field>
+      }
       <mat-form-field>
         <mat-label>Missing, beside the empty field</mat-label>
         <input matInput [value]="missing()" [disabled]="disabled()" placeholder="NA, NULL" (change)="setMissing($event)" />
