@@ -101,6 +101,17 @@ describe('the dictionary under edit', () => {
     expect(store.fileRefused()).toBe(false);
   });
 
+  it('keeps what was saved from here while it was read anew', async () => {
+    const opened = store.open('m1', 's1');
+    const read = await next('GET');
+    const saved = store.change(entry('age', 'Mine'));
+    await answer('PUT', dictionary(2, entry('age', 'Mine')));
+    await saved;
+    read.flush(dictionary(1, entry('age', 'Age')), { headers: { ETag: '"1"' } });
+    await opened;
+    expect(store.entry('age').label).toBe('Mine');
+  });
+
   it('is read anew when it is opened again, as after another reading of the file', async () => {
     const opened = store.open('m1', 's1');
     await answer('GET', dictionary(4, entry('age', 'Read anew')));

@@ -27,6 +27,7 @@ export class DictionaryStore {
   private readonly mine = signal<ReadonlyMap<string, DictionaryEntry>>(new Map());
   private readonly busy = signal(0);
   private etag = '';
+  private changes = 0;
   private address: string | null = null;
   private saving: Promise<void> = Promise.resolve();
 
@@ -47,13 +48,16 @@ export class DictionaryStore {
     // What was typed here goes on under the tag that it was typed under; otherwise whatever is there now is read.
     else if (this.known() && this.unsaved()) return;
     this.address = address;
-    await this.reload();
+    const before = this.changes;
+    await this.read(() => before === this.changes && this.address === address);
   }
 
-  async reload(): Promise<void> {
+  /** `wanted` is asked once the answer is here: it may be older than what was saved from here meanwhile. */
+  private async read(wanted: () => boolean): Promise<void> {
     if (this.address === null) return;
     try {
       const { value, etag } = await firstValueFrom(readTagged<Dictionary>(this.http, this.address));
+      if (!wanted()) return;
       this.take(value, etag);
       this.failure.set(null);
     } catch (error) {
@@ -150,6 +154,7 @@ export class DictionaryStore {
   }
 
   private inTurn(work: (address: string) => Promise<void>): Promise<void> {
+    this.changes++;
     this.busy.update((count) => count + 1);
     this.saving = this.saving.then(async () => {
       const { address } = this;

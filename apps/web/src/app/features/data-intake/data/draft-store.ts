@@ -47,14 +47,22 @@ export class DraftStore {
     if (this.place?.sampleId === sampleId && this.draft() && this.state() !== 'saved') return;
     if (this.place?.sampleId !== sampleId) this.draft.set(null);
     this.place = { modelId, sampleId };
-    await this.reload();
+    await this.read(() => this.state() === 'saved');
   }
 
   /** Takes what the server has now; own changes that were not saved are given up. */
-  async reload(): Promise<void> {
-    if (!this.place) return;
+  reload(): Promise<void> {
+    return this.read(() => true);
+  }
+
+  /** `wanted` is asked once the answer is here: what was changed meanwhile is not thrown away for it. */
+  private async read(wanted: () => boolean): Promise<void> {
+    const { place } = this;
+    if (!place) return;
+    const known = this.etag;
     try {
-      const { value, etag } = await this.samples.draft(this.place.modelId, this.place.sampleId);
+      const { value, etag } = await this.samples.draft(place.modelId, place.sampleId);
+      if (place !== this.place || !wanted() || known !== this.etag) return;
       // The same draft, under which its rows were counted already.
       const same = this.draft() !== null && etag === this.etag && this.mine() === null;
       this.etag = etag;
