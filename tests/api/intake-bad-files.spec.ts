@@ -213,7 +213,7 @@ describe('numbers and dates', () => {
     expect(flag.values).toEqual(['0x10', '1e309', 'Inf', 'NaN']);
     const draft = await modeller.get(`${path}/draft`).expect(200);
     expect(draft.body.problems).toMatchObject([{ code: 'unreadable-numbers', where: { column: 'amount' } }]);
-    expect(draft.body.problems[0].message).toContain('Read the file again with these as missing tokens');
+    expect(draft.body.problems[0].message).toContain('Name them as special codes, read the file again with these as missing tokens');
     // Named as missing they are settled.
     const again = await modeller
       .post(`${path}/readings`)

@@ -1,7 +1,5 @@
-import gammainc from '@stdlib/math-base-special-gammainc';
-import gammaln from '@stdlib/math-base-special-gammaln';
 import { requireNumber, requireThat } from '../checks';
-import { chiSquareTail } from './tails';
+import { logGamma, upperGamma } from './gamma';
 
 /** Of a Poisson count, further than this many standard deviations from its mean (and a few counts more) nothing is left in double precision. */
 const reach = 9;
@@ -22,16 +20,16 @@ export function noncentralChiSquareTail(x: number, degreesOfFreedom: number, non
   requireThat(noncentrality >= 0 && noncentrality < Infinity, 'noncentrality', 'the noncentrality must be at least 0.');
   if (x <= 0) return 1;
   if (x === Infinity) return 0;
-  if (noncentrality === 0) return chiSquareTail(x, degreesOfFreedom);
+  if (noncentrality === 0) return upperGamma(degreesOfFreedom / 2, x / 2);
   const mean = noncentrality / 2;
   const y = x / 2;
   const spread = reach * Math.sqrt(mean) + 30;
   const first = Math.max(0, Math.floor(mean - spread));
   const last = Math.ceil(mean + spread);
-  let weight = Math.exp(first * Math.log(mean) - mean - gammaln(first + 1));
+  let weight = Math.exp(first * Math.log(mean) - mean - logGamma(first + 1));
   let a = degreesOfFreedom / 2 + first;
-  let tail = gammainc(y, a, true, true);
-  let step = Math.exp(a * Math.log(y) - y - gammaln(a + 1));
+  let tail = upperGamma(a, y);
+  let step = Math.exp(a * Math.log(y) - y - logGamma(a + 1));
   let sum = 0;
   let weights = 0;
   for (let j = first; j <= last; j++) {
