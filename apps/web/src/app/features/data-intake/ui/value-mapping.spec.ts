@@ -13,6 +13,8 @@ describe('the meaning of a value', () => {
     fixture.detectChanges();
   };
 
+  const later = (): Promise<void> => new Promise((resolve) => setTimeout(resolve));
+
   beforeEach(() => {
     told.length = 0;
     fixture = TestBed.createComponent(ValueMapping);
@@ -26,10 +28,19 @@ describe('the meaning of a value', () => {
     show(null);
   });
 
-  it('is given by pressing, changed by pressing another, and taken back by pressing it again', () => {
+  it('is given by an arrow key too', () => {
+    show('good');
+    const [first] = [...(fixture.nativeElement as HTMLElement).querySelectorAll<HTMLElement>('mat-button-toggle button')];
+    first.dispatchEvent(new KeyboardEvent('keydown', { key: 'ArrowRight', keyCode: 39, bubbles: true }));
+    expect(told).toEqual([{ value: 'paid', meaning: 'bad' }]);
+  });
+
+  it('is given by pressing, changed by pressing another, and taken back by pressing it again', async () => {
     press('Good');
+    await later();
     show('good');
     press('Bad');
+    await later();
     show('bad');
     press('Bad');
     show(null);

@@ -33,9 +33,12 @@ export interface Meaning {
             [hideSingleSelectionIndicator]="true"
           >
             @for (meaning of meanings(); track meaning.key) {
-              <mat-button-toggle [value]="meaning.key" (click)="choose(entry, meaning.key)">{{
-                meaning.label
-              }}</mat-button-toggle>
+              <mat-button-toggle
+                [value]="meaning.key"
+                (change)="choose(entry, meaning.key)"
+                (click)="takeBack(entry, meaning.key)"
+                >{{ meaning.label }}</mat-button-toggle
+              >
             }
           </mat-button-toggle-group>
         </div>
@@ -82,8 +85,20 @@ export class ValueMapping {
   protected readonly count = count;
   protected readonly share = share;
 
+  /** Chosen by the press that is under way, which must not take it back too. */
+  private fresh: string | null = null;
+
+  /** By pointer, or by an arrow key, which presses nothing. */
+  protected choose({ value, meaning }: MappedValue, chosen: string): void {
+    if (!this.editable() || meaning === chosen) return;
+    this.fresh = JSON.stringify([value, chosen]);
+    setTimeout(() => (this.fresh = null));
+    this.mapped.emit({ value, meaning: chosen });
+  }
+
   /** A group of toggles never lets its last one go by itself: pressing again is seen here. */
-  protected choose({ value, meaning }: MappedValue, pressed: string): void {
-    if (this.editable()) this.mapped.emit({ value, meaning: meaning === pressed ? null : pressed });
+  protected takeBack({ value, meaning }: MappedValue, pressed: string): void {
+    if (!this.editable() || meaning !== pressed || this.fresh === JSON.stringify([value, pressed])) return;
+    this.mapped.emit({ value, meaning: null });
   }
 }
