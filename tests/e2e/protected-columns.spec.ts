@@ -30,7 +30,8 @@ async function define(page: Page, modelId: string): Promise<string> {
     ...content,
     columns: content.columns.map((column) => {
       if (column.column === 'gender') return { ...column, role: 'characteristic', protected: true, citation: 'Section 1, as the modeller reads it' };
-      return ['age', 'utilisation', 'home'].includes(column.column) ? { ...column, role: 'characteristic', reason: 'as an example' } : column;
+      if (column.column === 'utilisation') return { ...column, role: 'characteristic', special: [{ label: 'no bureau record', values: [-999] }] };
+      return ['age', 'home'].includes(column.column) ? { ...column, role: 'characteristic', reason: 'as an example' } : column;
     }),
     partition: { by: 'seed', seed: 7, holdOutShare: 0.3, outOfTime: null },
   };

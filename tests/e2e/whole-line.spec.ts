@@ -114,7 +114,7 @@ test('states what columns and outcomes mean, and confirms the definition', async
     await open(column);
     for (const [code, meaning] of Object.entries(codes)) {
       await page.locator('p', { hasText: `${code}:` }).getByRole('button', { name: 'Treat as special code' }).click();
-      const field = page.getByLabel('Meaning').last();
+      const field = page.getByLabel('Meaning', { exact: true }).last();
       await field.fill(meaning);
       await field.blur();
     }
@@ -137,7 +137,7 @@ test('states what columns and outcomes mean, and confirms the definition', async
 
   await page.getByRole('link', { name: 'Outcome and partition', exact: true }).click();
   const mean = async (value: string, meaning: string): Promise<void> => {
-    await page.getByRole('radiogroup', { name: `${value} means` }).getByRole('radio', { name: meaning }).click();
+    await page.getByRole('radiogroup', { name: `${value} means` }).getByRole('radio', { name: meaning }).check();
   };
   await mean('good', 'Good');
   await mean('bad', 'Bad');

@@ -3,6 +3,7 @@ import { MatFormFieldModule } from '@angular/material/form-field';
 import { MatInputModule } from '@angular/material/input';
 import type { DefinedColumn } from '@tallystone/contracts/samples/definition';
 import type { DictionaryEntry } from '@tallystone/contracts/samples/dictionary';
+import { unnamedCode } from '@tallystone/contracts/samples/special-codes';
 import { written } from '../../../ui/numbers';
 
 /** What one column means, in words: label, unit, description, and what is done about each special code. */
@@ -43,7 +44,7 @@ import { written } from '../../../ui/numbers';
       </mat-form-field>
       @for (code of codes(); track code.code) {
         <mat-form-field>
-          <mat-label>Treatment of {{ code.shown }} ({{ code.meaning }})</mat-label>
+          <mat-label>Treatment of {{ code.shown }}{{ code.meaning }}</mat-label>
           <input
             matInput
             maxlength="200"
@@ -81,7 +82,7 @@ export class DictionaryEditor {
       values.map((value) => ({
         code: String(value),
         shown: written(value),
-        meaning: label,
+        meaning: label === unnamedCode ? '' : ` (${label})`,
         treatment: this.entry().treatments.find(({ code }) => code === String(value))?.treatment ?? '',
       })),
     ),
