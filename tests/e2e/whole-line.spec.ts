@@ -115,8 +115,11 @@ test('states what columns and outcomes mean, and confirms the definition', async
     for (const [code, meaning] of Object.entries(codes)) {
       await page.locator('p', { hasText: `${code}:` }).getByRole('button', { name: 'Treat as special code' }).click();
       const field = page.getByLabel('Meaning', { exact: true }).last();
+      // The new one, which nobody has named yet.
+      await expect(field).toHaveValue('');
       await field.fill(meaning);
       await field.blur();
+      await expect(field).toHaveValue(meaning);
     }
   }
   await open('age_band');
