@@ -13,6 +13,7 @@ export * from './metrics/probability-scores';
 export * from './metrics/calibration';
 export * from './metrics/intervals';
 export * from './metrics/back-testing';
+export * from './metrics/rank-correlation';
 export * from './metrics/stability-index';
 export * from './metrics/stability-sampling';
 export * from './random/generator';

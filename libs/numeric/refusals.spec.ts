@@ -66,6 +66,8 @@ const calls: [string, () => unknown, object][] = [
     () => numeric.fitAt({ ...problem, penalty: { ...problem.penalty, upper: Float64Array.of(NaN) } }, 1),
     { name: 'upper' },
   ],
+  ['a', () => numeric.rankCorrelation(nan, scores), { name: 'a', index: 1 }],
+  ['b', () => numeric.rankCorrelation(scores, nan), { name: 'b', index: 1 }],
   ['mixing', () => numeric.fitAt({ ...problem, penalty: { ...problem.penalty, mixing: NaN } }, 1), { name: 'mixing' }],
   ['lambda', () => numeric.fitAt(problem, NaN), { name: 'lambda' }],
   ['lambda', () => numeric.crossValidate(problem, Uint8Array.of(1, 1, 2, 2), [NaN]), { name: 'lambda' }],

@@ -8,6 +8,7 @@ import { auc, delong, kolmogorovSmirnov, pairedDelong, rocCurve } from './discri
 import { clopperPearson, herfindahl, jeffreysTail, rateInterval, wilsonInterval } from './intervals';
 import { quantileType7 } from './ordering';
 import { brier, logLoss, murphyDecomposition } from './probability-scores';
+import { rankCorrelation } from './rank-correlation';
 import { populationStability, stabilityParts } from './stability-index';
 
 /** Scores of few values, so that there are ties, with both classes. */
@@ -194,5 +195,22 @@ describe('stability and intervals', () => {
     expect(binomialCriticalCount(1000, 0.02, 0.99)).toBeGreaterThan(binomialCriticalCount(1000, 0.02, 0.95));
     expect(herfindahl([10, 10, 10]).relative).toBeCloseTo(0, 12);
     expect(herfindahl([30, 0, 0]).relative).toBeCloseTo(1, 12);
+  });
+});
+
+describe('rank correlation', () => {
+  it('heeds order alone, and is 1 with itself and -1 with its reverse', () => {
+    fc.assert(
+      fc.property(scored, ({ scores, outcome }) => {
+        fc.pre(new Set(scores).size > 1 && new Set(outcome).size > 1);
+        expect(rankCorrelation(scores, scores.map(Math.exp))).toBeCloseTo(1, 14);
+        expect(rankCorrelation(scores, scores.map((score) => -score))).toBeCloseTo(-1, 14);
+        expect(rankCorrelation(scores, outcome)).toBeCloseTo(rankCorrelation(outcome, scores), 14);
+      }),
+    );
+  });
+  it('is not a number where a score has one value', () => {
+    expect(rankCorrelation([1, 1, 1], [1, 2, 3])).toBeNaN();
+    expect(rankCorrelation([1], [1])).toBeNaN();
   });
 });

@@ -27,6 +27,7 @@ import {
   pairedDelong,
   populationStability,
   quantilesType7,
+  rankCorrelation,
   spiegelhalter,
   stabilityCriticalValue,
   stabilitySampling,
@@ -88,6 +89,7 @@ export function ownFigures(drawn: Drawn): Record<string, ArrayLike<number>> {
     'ks-a': [kolmogorovSmirnov(a, y).ks],
     'ks-b': [kolmogorovSmirnov(b, y).ks],
     paired: [paired.z, paired.pValue, paired.covariance[0][1]],
+    spearman: [rankCorrelation(a, b), rankCorrelation(a, pd)],
     'quantiles-a': quantilesType7(
       a,
       Array.from({ length: 21 }, (_, k) => k / 20),
@@ -148,6 +150,7 @@ const titles: Record<string, { title: string; tolerance: number; relative?: bool
   paired: { title: 'paired DeLong: z, p-value, covariance', tolerance: 1e-10 },
   'ks-a': { title: 'KS, ties', tolerance: 1e-12 },
   'ks-b': { title: 'KS', tolerance: 1e-12 },
+  spearman: { title: "Spearman's rank correlation, ties", tolerance: 1e-13 },
   'quantiles-a': { title: 'quantiles of type 7, ties', tolerance: 1e-12 },
   'quantiles-b': { title: 'quantiles of type 7', tolerance: 1e-12 },
   // R's glm stops at a relative change of its deviance; its last Newton step is far smaller.

@@ -15,6 +15,7 @@ for (s in c("a", "b")) {
 }
 test <- roc.test(curves$a, curves$b, method = "delong", paired = TRUE)
 emit("paired", c(test$statistic, test$p.value, cov(curves$a, curves$b)))
+emit("spearman", c(cor(d$a, d$b, method = "spearman"), cor(d$a, d$pd, method = "spearman")))
 emit("quantiles-a", quantile(d$a, seq(0, 1, 0.05), type = 7))
 emit("quantiles-b", quantile(d$b, c(0, 0.001, 0.137, 0.5, 0.999, 1), type = 7))
 

@@ -29,6 +29,7 @@ for s in ("a", "b"):
     false, true, _ = roc_curve(d["y"], d[s], sample_weight=d["w"], drop_intermediate=False)
     emit(f"ks-weighted-{s}", np.max(np.abs(true - false)))
     emit(f"ks-{s}", stats.ks_2samp(d[s][d["y"] == 1], d[s][d["y"] == 0]).statistic)
+emit("spearman", [stats.spearmanr(d["a"], d[other]).correlation for other in ("b", "pd")])
 for name, w in (("plain", None), ("weighted", d["w"])):
     emit(f"brier-{name}", brier_score_loss(bad, d["pd"], sample_weight=w))
     emit(f"log-loss-{name}", log_loss(bad, d["pd"], sample_weight=w))
