@@ -2,6 +2,9 @@ import { isAscii, isUtf8 } from 'node:buffer';
 import type { Encoding } from '@tallystone/contracts/specification/types';
 import type { ReadingProblem } from './types';
 
+const LF = 10;
+const CR = 13;
+
 /** Bytes to text, never with a replacement character: what does not belong to the encoding is reported with its line. */
 
 /** Files that are not text at all, by their first bytes (the registered signatures of ZIP, OLE, PDF and gzip). */
@@ -47,6 +50,19 @@ export interface Decoder {
   end(line: number, onFault: (line: number) => void): string;
 }
 
+/** A line may end with CR and LF in two chunks: it was counted at the CR, so the LF that begins the next chunk belongs to the line before. */
+class FirstLine {
+  private returned = false;
+
+  /** @param line that on which the chunk starts for whoever counted the CR */
+  of(line: number, first: number | undefined, last: number | undefined): number {
+    if (first === undefined) return line;
+    const from = this.returned && first === LF ? line - 1 : line;
+    this.returned = last === CR;
+    return from;
+  }
+}
+
 export function decoderOf(encoding: Encoding): Decoder {
   if (encoding === 'utf-8') return new Utf8Decoder();
   return encoding === 'windows-1252' ? new Windows1252Decoder() : new Utf16Decoder(encoding === 'utf-16be');
@@ -85,12 +101,14 @@ export function wholeLines(bytes: Buffer, encoding: Encoding): number {
 
 class Utf8Decoder implements Decoder {
   private rest: Buffer = Buffer.alloc(0);
+  private readonly first = new FirstLine();
 
-  decode(chunk: Buffer, line: number, onFault: (line: number) => void, onLost?: (line: number) => void): string {
+  decode(chunk: Buffer, startLine: number, onFault: (line: number) => void, onLost?: (line: number) => void): string {
     const bytes = this.rest.length > 0 ? Buffer.concat([this.rest, chunk]) : chunk;
     const cut = completeUtf8(bytes);
     this.rest = Buffer.from(bytes.subarray(cut));
     const whole = cut === bytes.length ? bytes : bytes.subarray(0, cut);
+    const line = this.first.of(startLine, whole[0], whole.at(-1));
     if (isAscii(whole)) return whole.toString('latin1');
     if (!isUtf8(whole)) faultyLines(whole, line, onFault);
     if (onLost && holdsLost(whole))
@@ -139,7 +157,10 @@ const HIGH =
   '\ufffd\u2018\u2019\u201c\u201d\u2022\u2013\u2014\u02dc\u2122\u0161\u203a\u0153\ufffd\u017e\u0178';
 
 class Windows1252Decoder implements Decoder {
-  decode(chunk: Buffer, line: number, onFault: (line: number) => void): string {
+  private readonly first = new FirstLine();
+
+  decode(chunk: Buffer, startLine: number, onFault: (line: number) => void): string {
+    const line = this.first.of(startLine, chunk[0], chunk.at(-1));
     const text = chunk.toString('latin1');
     if (isAscii(chunk)) return text;
     return text.replace(/[\u0080-\u009f]/g, (character: string, place: number) => {
@@ -156,10 +177,11 @@ class Windows1252Decoder implements Decoder {
 
 class Utf16Decoder implements Decoder {
   private rest: Buffer = Buffer.alloc(0);
+  private readonly first = new FirstLine();
 
   constructor(private readonly swap: boolean) {}
 
-  decode(chunk: Buffer, line: number, onFault: (line: number) => void, onLost?: (line: number) => void): string {
+  decode(chunk: Buffer, startLine: number, onFault: (line: number) => void, onLost?: (line: number) => void): string {
     const bytes = Buffer.concat([this.rest, chunk]);
     let cut = bytes.length - (bytes.length % 2);
     // A leading surrogate waits for its partner.
@@ -169,6 +191,7 @@ class Utf16Decoder implements Decoder {
     const whole = bytes.subarray(0, cut);
     if (this.swap) whole.swap16();
     const text = whole.toString('utf16le');
+    const line = text === '' ? startLine : this.first.of(startLine, text.charCodeAt(0), text.charCodeAt(text.length - 1));
     for (const lone of text.matchAll(/\p{Surrogate}/gu)) onFault(line + lineEnds(text, lone.index));
     if (onLost) lostLines(text, '\ufffd', line, onLost);
     return text;

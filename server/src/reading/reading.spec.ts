@@ -85,6 +85,24 @@ describe('reading a raw file', () => {
     expect(file.problems[0]).toMatchObject({ code: 'ragged', where: { line: 5, record: 2 } });
   });
 
+  it('names the line of a wrong byte wherever chunks end, between CR and LF too', async () => {
+    const filler = '1,2\r\n'.repeat(1500);
+    const wrong = '\xe9,2\r\n1,"x\r\n\xe9"\r\n1,2\r\n\r1,\xe9\r\n';
+    const lines = [1502, 1504, 1507];
+    for (const size of [1, 2, 3, 5, 4096, 1 << 16]) {
+      const [problem] = (await read(Buffer.from(`a,b\r\n${filler}${wrong}`, 'latin1'), {}, {}, size)).problems;
+      expect([size, problem.code, problem.where.lines]).toEqual([size, 'not-in-encoding', lines]);
+      const lost = (await read(`a,b\r\n${filler}${wrong.replaceAll('\xe9', '\ufffd')}`, {}, {}, size)).problems;
+      expect(lost.find(({ code }) => code === 'lost-characters')?.where.lines).toEqual(lines);
+      const western = Buffer.from(`a,b\r\n${filler}${wrong.replaceAll('\xe9', '\x81')}`, 'latin1');
+      const { problems } = await read(western, { encoding: 'windows-1252' }, {}, size);
+      expect(problems.find(({ code }) => code === 'not-in-encoding')?.where.lines).toEqual(lines);
+      const wide = Buffer.from(`a,b\r\n${filler}${wrong.replaceAll('\xe9', '\ud800')}`, 'utf16le');
+      const found = (await read(wide, { encoding: 'utf-16le' }, {}, size)).problems;
+      expect(found.find(({ code }) => code === 'not-in-encoding')?.where.lines).toEqual(lines);
+    }
+  });
+
   it('lets blank lines stand at the end only, but reads them as missing in a file of one column', async () => {
     expect((await read('a,b\n1,2\n\n\n')).rows).toBe(1);
     expect(codesOf(await read('a,b\n1,2\n\n3,4\n'))).toEqual(['ragged']);
