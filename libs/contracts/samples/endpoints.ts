@@ -7,7 +7,7 @@ import { ConfirmDraft, ConfirmReading, Definition, DefinitionList, Draft, DraftC
 import { ColumnLabels, Dictionary, DictionaryContent, DictionaryFile } from './dictionary';
 import { KeptSamples, NewErasure } from './erasure';
 import { ColumnQualityDetail, NewFlagAnswer, QualityColumnQuery, QualityState } from './quality';
-import { Preview, PreviewRequest } from './reading';
+import { DoubtfulLines, Preview, PreviewRequest } from './reading';
 import { ArrivedPart, DefinitionParams, Sample, SampleList, SampleListParams, SampleParams, UploadParams } from './schema';
 
 const ofModel = '/api/models/:modelId' as const;
@@ -92,6 +92,13 @@ export const confirmReading = defineEndpoint({
   body: ConfirmReading,
   response: Run,
   status: 202,
+});
+export const readDoubtfulLines = defineEndpoint({
+  method: 'GET',
+  path: `${ofSample}/doubtful-lines`,
+  summary: 'The doubtful lines of the whole file, as a reading that was refused found them',
+  params: SampleParams,
+  response: DoubtfulLines,
 });
 export const listColumns = defineEndpoint({
   method: 'GET',

@@ -33,7 +33,7 @@ export const columnKinds = ['numeric', 'categorical', 'date'] as const;
 export const ColumnKind = z.enum(columnKinds);
 export type ColumnKind = z.infer<typeof ColumnKind>;
 
-/** Most doubtful lines that a preview lists; it counts them all. */
+/** Most doubtful lines that are listed; all are counted. */
 export const mostDoubtfulLines = 50;
 
 /** A line of the file with what is wrong with it, as it stands there. */
@@ -49,6 +49,12 @@ export const DoubtfulLine = z.object({
   doubts: z.array(z.string()),
 });
 export type DoubtfulLine = z.infer<typeof DoubtfulLine>;
+
+/** Lines in which something is wrong: the first of them, and how many there are. */
+export const DoubtfulLines = z
+  .object({ lines: z.array(DoubtfulLine).max(mostDoubtfulLines), count: z.int() })
+  .meta({ id: 'DoubtfulLines' });
+export type DoubtfulLines = z.infer<typeof DoubtfulLines>;
 
 /** The first rows as they would be read, with everything that is doubtful, before anything is decided. */
 export const Preview = z
@@ -72,8 +78,8 @@ export const Preview = z
         against: z.string().nullable(),
       }),
     ),
-    /** Lines of the part that was looked at in which something is wrong: the first of them, and how many there are. */
-    doubtful: z.object({ lines: z.array(DoubtfulLine).max(mostDoubtfulLines), count: z.int() }),
+    /** Of the part that was looked at. */
+    doubtful: DoubtfulLines,
     /** The whole file has been looked at, or its beginning only. */
     looked: z.object({ records: z.int(), bytes: z.number(), whole: z.boolean() }),
     /** What must be settled before the file can be read. */

@@ -1,7 +1,7 @@
 import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import type { DefinitionCounts, DraftContent, SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
 import type { ResultCounts } from '@tallystone/contracts/result/types';
-import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
+import type { DoubtfulLine, ReadingChoices } from '@tallystone/contracts/samples/reading';
 import { type CreationOptional, DataTypes, type InferAttributes, type InferCreationAttributes, Model, type Sequelize } from 'sequelize';
 
 /** A file on its way or here as a whole. Sizes are bigint in the database and arrive as texts. */
@@ -16,6 +16,14 @@ export class RawFile extends Model<InferAttributes<RawFile>, InferCreationAttrib
   declare startedAt: CreationOptional<Date>;
   declare seenAt: CreationOptional<Date>;
   declare completedAt: CreationOptional<Date | null>;
+}
+
+/** Where the doubtful lines of a refused reading begin in the raw file, in bytes, and what is wrong with each: nothing of what stands there. */
+export interface DoubtfulPlaces {
+  readonly encoding: ReadingChoices['encoding'];
+  /** Of all of them; the first are listed. */
+  readonly count: number;
+  readonly lines: readonly (Pick<DoubtfulLine, 'line' | 'record' | 'doubts'> & { readonly at: number })[];
 }
 
 export class Sample extends Model<InferAttributes<Sample>, InferCreationAttributes<Sample>> {
@@ -33,6 +41,7 @@ export class Sample extends Model<InferAttributes<Sample>, InferCreationAttribut
   declare columns: CreationOptional<number | null>;
   declare duplicateRows: CreationOptional<number | null>;
   declare problems: CreationOptional<ProblemItem[]>;
+  declare doubtful: CreationOptional<DoubtfulPlaces | null>;
   declare receivedAt: CreationOptional<Date>;
   declare receivedBy: string;
 }
@@ -93,6 +102,7 @@ export function defineSample(sequelize: Sequelize): void {
       columns: DataTypes.INTEGER,
       duplicateRows: DataTypes.INTEGER,
       problems: DataTypes.JSONB,
+      doubtful: DataTypes.JSONB,
       receivedAt: DataTypes.DATE,
       receivedBy: DataTypes.UUID,
     },

@@ -54,6 +54,14 @@ export async function storeChunk(
   });
 }
 
+async function readChunk(sequelize: Sequelize, key: Buffer, fileId: string, sequence: number): Promise<Buffer | null> {
+  const [found] = await readBytes(sequelize, {
+    text: 'SELECT content FROM raw_chunks WHERE file_id = $1 AND sequence = $2',
+    values: [fileId, sequence],
+  });
+  return found ? openChunk(key, fileId, sequence, found) : null;
+}
+
 /** Chunks that are fetched and opened while the one before them is used. */
 const chunksAhead = 2;
 
@@ -68,13 +76,7 @@ export async function* readChunks(
   fileId: string,
   signal?: AbortSignal,
 ): AsyncGenerator<Buffer> {
-  const fetch = async (sequence: number): Promise<Buffer | null> => {
-    const [found] = await readBytes(sequelize, {
-      text: 'SELECT content FROM raw_chunks WHERE file_id = $1 AND sequence = $2',
-      values: [fileId, sequence],
-    });
-    return found ? openChunk(key, fileId, sequence, found) : null;
-  };
+  const fetch = (sequence: number): Promise<Buffer | null> => readChunk(sequelize, key, fileId, sequence);
   const coming: Promise<Buffer | null>[] = [];
   const ask = (sequence: number): void => {
     const chunk = fetch(sequence);
@@ -120,4 +122,43 @@ export async function* readRawFile(
     yield chunk;
   }
   if (bytes !== Number(sample.size)) throw new Error(`The raw file of sample ${sampleId} has ${bytes} of ${sample.size} bytes`);
+}
+
+/**
+ * Parts of a file, each from where it starts on, and shorter at the end of the file. Only chunks that a part lies in are opened, each once where parts
+ * are in ascending order.
+ *
+ * @throws Problem 409 where the rows of its sample were erased
+ * @example
+ * const [head] = await readRawParts(sequelize, key, fileId, { starts: [0], length: 100 });
+ */
+export async function readRawParts(
+  sequelize: Sequelize,
+  key: Buffer,
+  fileId: string,
+  { starts, length }: { readonly starts: readonly number[]; readonly length: number },
+): Promise<Buffer[]> {
+  const chunks = (
+    await rows<{ sequence: number; start: string; length: number }>(
+      sequelize,
+      'SELECT sequence, start, length FROM raw_chunks WHERE file_id = $1 ORDER BY sequence',
+      [fileId],
+    )
+  ).map((chunk) => ({ ...chunk, start: Number(chunk.start) }));
+  let latest: { readonly sequence: number; readonly bytes: Promise<Buffer | null> } | undefined;
+  const open = (sequence: number): Promise<Buffer | null> => {
+    if (latest?.sequence !== sequence) latest = { sequence, bytes: readChunk(sequelize, key, fileId, sequence) };
+    return latest.bytes;
+  };
+  const parts: Buffer[] = [];
+  for (const start of starts) {
+    const pieces: Buffer[] = [];
+    for (const chunk of chunks.filter((one) => one.start < start + length && one.start + one.length > start)) {
+      const bytes = await open(chunk.sequence);
+      if (bytes) pieces.push(bytes.subarray(Math.max(0, start - chunk.start), start + length - chunk.start));
+    }
+    if (pieces.length === 0) await refuseErased(sequelize, { rawFileId: fileId });
+    parts.push(Buffer.concat(pieces));
+  }
+  return parts;
 }

@@ -160,7 +160,7 @@ export function describeErasing(open: () => Erasing): void {
       [`/api/models/${modelId}/versions`, { fitId, note: 'Another' }],
       [`/api/fits/${fitId}/scorecard/applicants`, { fields: { age: '40' } }],
     ];
-    const asked = [...bodies.map(([to, body]) => modeller.post(to).set('Idempotency-Key', key()).send(body)), modeller.get(`/api/models/${modelId}/comparison?fits=${fitId},${secondFitId}`)];
+    const asked = [...bodies.map(([to, body]) => modeller.post(to).set('Idempotency-Key', key()).send(body)), modeller.get(`/api/models/${modelId}/comparison?fits=${fitId},${secondFitId}`), modeller.get(`${path}/doubtful-lines`)];
     for (const request of asked) {
       const { status, body } = await request;
       expect({ status, code: body.code, detail: body.detail }, request.url).toEqual({ status: 409, code: 'rows-erased', detail: expect.stringMatching(words) });
@@ -176,7 +176,7 @@ export function describeErasing(open: () => Erasing): void {
     // The file that was on its way, which no erasure of a sample concerns.
     const ids: Record<string, string> = { ...world, uploadId: upload.split('/').at(-1) ?? '' };
     for (const { endpoint } of routes) {
-      if (endpoint.path.endsWith('/comparison') || endpoint.path.endsWith('/member-candidates')) continue;
+      if (['/comparison', '/doubtful-lines', '/member-candidates'].some((tail) => endpoint.path.endsWith(tail))) continue;
       const query = endpoint.path.endsWith('/quality/column') ? '?column=age' : '';
       const { status, body } = await modeller.get(endpoint.path.replace(/:(\w+)/g, (_, name: string) => ids[name]) + query);
       expect([endpoint.path, status]).toEqual([endpoint.path, 200]);

@@ -51,6 +51,7 @@ export const sampleRows: readonly AccessRow[] = [
   readsModel(`GET ${ofSample}`),
   { ...developsModel(`POST ${ofSample}/preview`), ...spare },
   { ...developsModel(`POST ${ofSample}/readings`), ...spare },
+  { ...developsModel(`GET ${ofSample}/doubtful-lines`), ...spare },
   readsModel(`GET ${ofSample}/columns`),
   readsModel(`GET ${ofSample}/draft`),
   developsModel(`PUT ${ofSample}/draft`),

@@ -5,6 +5,7 @@ import { describeRun } from '../../services/runs/find';
 import { listColumns } from '../../services/samples/columns-of';
 import { confirmReading } from '../../services/samples/confirm-reading';
 import { discardSample } from '../../services/samples/discard-sample';
+import { doubtfulLinesOf } from '../../services/samples/doubtful-places';
 import { findSample } from '../../services/samples/find-sample';
 import { listSamples, presentSample } from '../../services/samples/present-sample';
 import { previewReading } from '../../services/samples/preview';
@@ -51,6 +52,13 @@ export function fileRoutes(): Route[] {
         const run = await confirmReading(context, tx, person, subject, body, requestId);
         return presentRun(await describeRun(context.sequelize, run.id, person.id, tx), person);
       },
+    }),
+    defineRoute(endpoints.readDoubtfulLines, {
+      access: 'signed-in',
+      find: ({ context, params }) => findSample(context.sequelize, params.modelId, params.sampleId),
+      // Rows as they stand: for those who look into the file before it is read.
+      authorise: ({ person, subject }) => canReadFile(person, subject),
+      act: ({ context, subject }) => doubtfulLinesOf(context, subject),
     }),
     defineRoute(endpoints.listColumns, {
       access: 'signed-in',

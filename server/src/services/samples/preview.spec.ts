@@ -58,6 +58,14 @@ describe('the doubtful lines of a preview', () => {
     expect(lines.map(({ line }) => line)).toEqual(Array.from({ length: mostDoubtfulLines }, (_, place) => place + 2));
   });
 
+  it('tell the first doubts of one line and how many more there are', async () => {
+    const wide = Array.from({ length: 30 }, (_, place) => `c${place}`);
+    const { lines } = await doubtfulOf(`${wide.join(',')}\n${wide.map(() => '\0').join(',')}\n`);
+    expect(lines).toHaveLength(1);
+    expect(lines[0].doubts.map((doubt) => doubt.slice(0, 9))).toEqual([...Array.from({ length: 10 }, (_, place) => `column ${place + 1}`.padEnd(9)), 'and 20 mo']);
+    expect(lines[0].doubts[10]).toBe('and 20 more');
+  }); // prettier-ignore
+
   it('are shown in the encoding that was chosen', async () => {
     const text = 'prix,b\r\n€ 5\r\nœuf,1\r\n';
     const wide = Buffer.from(`\ufeff${text}`, 'utf16le');

@@ -8,6 +8,7 @@ import { numberReader, readSegments, sniff } from '../../reading/index';
 import { readChunks } from '../../storage/rawFiles';
 import { type DateEvidence, dateEvidence, dateQuestion, dateReason, decidedOrder } from './date-evidence';
 import { DoubtfulLines } from './doubtful-lines';
+import { doubtfulLinesIn } from './doubtful-places';
 import type { FoundSample } from './find-sample';
 import { problemItem } from './problem-item';
 import { type Counted, judgeKind, thin } from '../../profiling/kind';
@@ -186,7 +187,7 @@ async function problemsOf(
   return {
     problems: problems.map(problemItem),
     records: facts.rows,
-    doubtful: doubtful.of(bytes.subarray(0, end), choices.encoding),
+    doubtful: doubtfulLinesIn(bytes.subarray(0, end), choices.encoding, doubtful),
   };
 }
 

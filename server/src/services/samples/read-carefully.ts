@@ -6,6 +6,8 @@ import { WritingsByColumn, watchedColumns, writingsOfTexts } from '../../profili
 import { type ColumnSegment, readSegments } from '../../reading/index';
 import { segmentRows, storeSegment } from '../../storage/columnStore';
 import { readRawFile } from '../../storage/rawFiles';
+import { DoubtfulLines } from './doubtful-lines';
+import { placesOf } from './doubtful-places';
 import type { ReadRows, Reading } from './read-rows';
 
 /**
@@ -15,12 +17,15 @@ import type { ReadRows, Reading } from './read-rows';
 export async function readCarefully(reading: Reading, readingId: string): Promise<ReadRows> {
   const { run, choices, key, sampleId } = reading;
   const { sequelize, config } = run.context;
+  const doubtful = new DoubtfulLines(true);
   const file = readSegments(readRawFile(sequelize, config.keys.rawFiles.subarray(0, 32), sampleId, run.signal), choices, {
     mostRows: fileLimits.rows,
     mostColumns: fileLimits.columns,
     segmentRows,
     signal: run.signal,
     onProgress: ({ bytes }) => reading.progress(bytes),
+    onDoubt: doubtful.onDoubt,
+    onRecord: doubtful.onRecord,
   });
   const isMissing = missingIn(choices);
   const duplicates = new DuplicateRows();
@@ -43,8 +48,9 @@ export async function readCarefully(reading: Reading, readingId: string): Promis
     segment++;
   }
   const facts = file.facts();
-  const refused = facts.problems.length > 0;
-  return { facts, personal, duplicateRows: refused ? 0 : duplicates.count(), writings: refused ? new Map() : writings.distinct() };
+  if (facts.problems.length > 0)
+    return { facts, personal, duplicateRows: 0, writings: new Map(), doubtful: await placesOf(reading, doubtful) };
+  return { facts, personal, duplicateRows: duplicates.count(), writings: writings.distinct(), doubtful: null };
 }
 
 const missingIn = (choices: ReadingChoices): ((text: string) => boolean) => {

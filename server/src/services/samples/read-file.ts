@@ -5,7 +5,7 @@ import type { Transaction } from 'sequelize';
 import { deriveKey } from '../../config/keys';
 import type { Context } from '../../context';
 import { rows } from '../../database/sql';
-import { Sample } from '../../models/sample';
+import { type DoubtfulPlaces, Sample } from '../../models/sample';
 import { Problem } from '../../problems/problem';
 import type { ReadingProblem } from '../../reading/index';
 import { NotPlain } from '../../reading/plain/field-index';
@@ -52,8 +52,8 @@ export async function readFile(sampleId: string, choices: ReadingChoices, run: R
     progress: (bytes) => run.progress('reading', (readingShare * bytes) / size),
   };
   const read = await readRows(reading);
-  const { readingId, facts, duplicateRows } = read;
-  if (facts.problems.length > 0) await refuseFile(run, sampleId, choices, facts.problems);
+  const { readingId, facts, duplicateRows, doubtful } = read;
+  if (facts.problems.length > 0) await refuseFile(run, sampleId, choices, facts.problems, doubtful);
   if (facts.sha256 !== sample.sha256)
     throw new Error(`The stored file of sample ${sampleId} has another fingerprint than the one that arrived`);
 
@@ -71,6 +71,7 @@ export async function readFile(sampleId: string, choices: ReadingChoices, run: R
         columns: facts.header.length,
         duplicateRows,
         problems: [],
+        doubtful: null,
       },
       { where: { id: sampleId }, transaction: tx },
     );
@@ -144,11 +145,12 @@ async function refuseFile(
   sampleId: string,
   choices: ReadingChoices,
   problems: readonly ReadingProblem[],
+  doubtful: DoubtfulPlaces | null,
 ): Promise<never> {
   const items = problems.map(problemItem);
   await run.write(async (tx) => {
-    await Sample.update({ problems: items, reading: choices }, { where: { id: sampleId, readingId: null }, transaction: tx });
-    await Sample.update({ problems: items }, { where: { id: sampleId }, transaction: tx });
+    await Sample.update({ reading: choices }, { where: { id: sampleId, readingId: null }, transaction: tx });
+    await Sample.update({ problems: items, doubtful }, { where: { id: sampleId }, transaction: tx });
   });
   const detail = items.length === 1 ? items[0].message : `The file has ${items.length} problems; the first: ${items[0].message}`;
   throw new Problem(422, 'file-refused', `${detail} Mend the file and upload it again, or change the reading choices.`, {

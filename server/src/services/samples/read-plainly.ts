@@ -104,5 +104,11 @@ export async function readPlainly(reading: Reading, readingId: string): Promise<
     run.signal.throwIfAborted();
     throw thrown;
   }
-  return { facts: file.facts(), personal: personal ?? [], duplicateRows: duplicates.count(), writings: writings.distinct() };
+  return {
+    facts: file.facts(),
+    personal: personal ?? [],
+    duplicateRows: duplicates.count(),
+    writings: writings.distinct(),
+    doubtful: null,
+  };
 }

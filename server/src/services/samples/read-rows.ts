@@ -1,5 +1,6 @@
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
 import type { Personal } from '../../profiling/personal';
+import type { DoubtfulPlaces } from '../../models/sample';
 import type { FileFacts } from '../../reading/index';
 import type { ReadingRun } from './read-file';
 
@@ -23,4 +24,6 @@ export interface ReadRows {
   readonly duplicateRows: number;
   /** By the position of a column of identifiers: how many there are when it does not count how they are written. */
   readonly writings: ReadonlyMap<number, number>;
+  /** Of a file that is refused; null where no line is doubtful. */
+  readonly doubtful: DoubtfulPlaces | null;
 }

@@ -45,6 +45,8 @@ export async function eraseSample(
   if (made.length === 0) throw conflict('erased-already', said.detail);
   const runsEnded = await endRunsOnRows(context, tx, sample.id, { code: said.code, message: said.detail, where: {} });
   await rows(sequelize, 'SELECT erase_sample_rows($1)', [sample.id], tx);
+  // Places in a file that is gone.
+  await rows(sequelize, 'UPDATE samples SET doubtful = NULL WHERE id = $1 RETURNING id', [sample.id], tx);
   const [{ versions }] = await rows<{ versions: number }>(
     sequelize,
     'SELECT count(*)::int AS versions FROM versions v JOIN sample_definitions d ON d.id = v.definition_id WHERE d.sample_id = $1',

@@ -20,7 +20,7 @@ import type {
   QualityReport,
   QualityState,
 } from '@tallystone/contracts/samples/quality';
-import type { Preview, PreviewRequest, ReadingChoices } from '@tallystone/contracts/samples/reading';
+import type { DoubtfulLines, Preview, PreviewRequest, ReadingChoices } from '@tallystone/contracts/samples/reading';
 import type { Sample, SampleList, SampleSummary, UploadSummary } from '@tallystone/contracts/samples/schema';
 import type { Run } from '@tallystone/contracts/runs/schema';
 import { firstValueFrom } from 'rxjs';
@@ -35,6 +35,7 @@ export type {
   Definition,
   DefinitionCounts,
   DefinitionSummary,
+  DoubtfulLines,
   Draft,
   DraftCheck,
   DraftContent,
@@ -58,6 +59,15 @@ export function sampleList(modelId: () => string): HttpResourceRef<SampleList | 
 
 export function oneSample(modelId: () => string, sampleId: () => string): HttpResourceRef<Sample | undefined> {
   return httpResource<Sample>(() => of(modelId(), sampleId()));
+}
+
+/** The doubtful lines that a reading which was refused found in the whole file; nothing is asked while `wanted` gives false. */
+export function doubtfulLinesOf(
+  modelId: () => string,
+  sampleId: () => string,
+  wanted: () => boolean,
+): HttpResourceRef<DoubtfulLines | undefined> {
+  return httpResource<DoubtfulLines>(() => (wanted() ? `${of(modelId(), sampleId())}/doubtful-lines` : undefined));
 }
 
 export function columnsOf(modelId: () => string, sampleId: () => string): HttpResourceRef<ColumnList | undefined> {

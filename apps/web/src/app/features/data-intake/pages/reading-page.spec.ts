@@ -2,7 +2,9 @@ import { provideHttpClient, withInterceptors } from '@angular/common/http';
 import { HttpTestingController, provideHttpClientTesting } from '@angular/common/http/testing';
 import { type ComponentFixture, TestBed } from '@angular/core/testing';
 import { provideRouter } from '@angular/router';
-import type { Preview, ReadingChoices } from '@tallystone/contracts/samples/reading';
+import type { ProblemItem } from '@tallystone/contracts/problems/schema';
+import type { DoubtfulLines, Preview, ReadingChoices } from '@tallystone/contracts/samples/reading';
+import { type Run, Runs } from '../../../core/events/runs';
 import { problemInterceptor } from '../../../core/http/interceptors';
 import { provideIcons } from '../../../ui/register-icons';
 import { ReadingPage } from './reading-page';
@@ -16,6 +18,7 @@ const reading: ReadingChoices = {
   trim: true,
   missing: ['', 'NA'],
 };
+const sample = { fileName: 'a.csv', reading, rows: 2, runId: null, definitions: 0, erased: null };
 const preview: Preview = {
   choices: reading,
   reasons: [],
@@ -37,23 +40,23 @@ describe('ReadingPage', () => {
     fixture.detectChanges();
   }
   /** Answers for the sample, and tells with which choices the file is looked at. */
-  async function open(missing?: string | string[]): Promise<Partial<ReadingChoices>> {
+  async function open({
+    missing,
+    shown = preview,
+    problems = [],
+    state = 'ready',
+  }: {
+    missing?: string | string[];
+    shown?: Preview;
+    problems?: readonly ProblemItem[];
+    state?: string;
+  } = {}): Promise<Partial<ReadingChoices>> {
     if (missing !== undefined) fixture.componentRef.setInput('missing', missing);
     fixture.detectChanges();
-    const sample = {
-      fileName: 'a.csv',
-      state: 'ready',
-      reading,
-      rows: 2,
-      runId: null,
-      problems: [],
-      definitions: 0,
-      erased: null,
-    };
-    server.expectOne(address).flush({ ...sample, abilities: ['read-file'] });
+    server.expectOne(address).flush({ ...sample, state, problems, abilities: ['read-file'] });
     await settled();
     const asked = server.expectOne(`${address}/preview`);
-    asked.flush(preview);
+    asked.flush(shown);
     await settled();
     return asked.request.body as Partial<ReadingChoices>;
   }
@@ -74,11 +77,11 @@ describe('ReadingPage', () => {
   });
 
   it('looks at the file as it was read, with the tokens that a column asked for', async () => {
-    expect(await open(['NaN', 'NA', '0x10'])).toEqual({ ...reading, missing: ['', 'NA', 'NaN', '0x10'] });
+    expect(await open({ missing: ['NaN', 'NA', '0x10'] })).toEqual({ ...reading, missing: ['', 'NA', 'NaN', '0x10'] });
   });
 
   it('takes a single token, and none', async () => {
-    expect((await open('Inf')).missing).toEqual(['', 'NA', 'Inf']);
+    expect((await open({ missing: 'Inf' })).missing).toEqual(['', 'NA', 'Inf']);
   });
 
   it('shows doubtful lines below the first rows, and lets nobody read on', async () => {
@@ -89,4 +92,73 @@ describe('ReadingPage', () => {
     const read = [...page().querySelectorAll('button')].find(({ textContent }) => textContent.includes('Read the file again'));
     expect(read?.disabled).toBe(true);
   });
+
+  describe('of a file whose last reading found lines beyond the preview', () => {
+    const clean: Preview = { ...preview, doubtful: { count: 0, lines: [] }, problems: [], looked: { records: 2, bytes: 10, whole: false } };
+    const refusal = { code: 'ragged', message: 'Line 60002 has 1 field where the header has 2.', where: { line: 60_002 } };
+    const found: DoubtfulLines = {
+      count: 2,
+      lines: [
+        { line: 60_002, record: 60_001, text: 'Old Mill Lane', clipped: false, doubts: ['1 field where the header has 2'] },
+        { line: 60_003, record: 60_002, text: 'M\\xE1laga,1', clipped: false, doubts: ['not UTF-8'] },
+      ],
+    };
+    const section = (): string | undefined => page().querySelector('[aria-label="Doubtful lines"]')?.textContent;
+
+    it('shows them as it does those of the preview', async () => {
+      await open({ shown: clean, problems: [refusal] });
+      server.expectOne(`${address}/doubtful-lines`).flush(found);
+      await settled();
+      expect(section()).toContain('When the file was last read, 2 lines of it were doubtful.');
+      expect(section()).toContain('Old Mill Lane');
+      expect(section()).toContain('M\\xE1laga,1');
+      expect(page().textContent).toContain(refusal.message);
+    });
+
+    it('shows those of the preview in their place where it finds any', async () => {
+      await open({ problems: [refusal] });
+      server.expectOne(`${address}/doubtful-lines`).flush(found);
+      await settled();
+      expect(section()).toContain('1 line of the file is doubtful.');
+      expect(section()).not.toContain('Old Mill Lane');
+      expect(page().textContent).not.toContain(refusal.message);
+    });
+
+    it('says why they cannot be shown', async () => {
+      await open({ shown: clean, problems: [refusal] });
+      const problem = { type: 'about:blank', title: 'Conflict', status: 409, code: 'rows-erased', detail: 'The rows were erased.', problems: [] };
+      server.expectOne(`${address}/doubtful-lines`).flush(problem, { status: 409, statusText: 'Conflict' });
+      await settled();
+      expect(section()).toBeUndefined();
+      expect(page().textContent).toContain('The rows were erased.');
+    });
+
+    it('shows them once a reading that was started here is refused, and anew after another', async () => {
+      await open({ shown: clean, state: 'received' });
+      for (const [id, text] of [['r1', 'Old Mill Lane'], ['r2', 'Quince Yard']] as const) {
+        const run = { id, kind: 'sample.read', entity: 'sample', entityId: 's1', attempt: 1, phase: null, share: null, abilities: [], createdAt: '', problem: null };
+        const samples = (): void => server.match(address).forEach((asked) => asked.flush({ ...sample, state: 'received', problems: [refusal], abilities: ['read-file'] }));
+        [...page().querySelectorAll('button')].find(({ textContent }) => textContent.includes('Read the file'))?.click();
+        server.expectOne(`${address}/readings`).flush({ ...run, state: 'queued' });
+        await settled();
+        samples();
+        await settled();
+        expect(section()).toBeUndefined();
+        server.expectNone(`${address}/doubtful-lines`);
+        TestBed.inject(Runs).follow({ ...run, state: 'failed' } as unknown as Run);
+        await settled();
+        samples();
+        await settled();
+        server.expectOne(`${address}/doubtful-lines`).flush({ count: 1, lines: [{ ...found.lines[0], text }] });
+        await settled();
+        expect(section()).toContain(text);
+      }
+    });
+
+    it('asks for none where the last reading found nothing wrong', async () => {
+      await open({ shown: clean });
+      server.expectNone(`${address}/doubtful-lines`);
+      expect(section()).toBeUndefined();
+    });
+  }); // prettier-ignore
 });

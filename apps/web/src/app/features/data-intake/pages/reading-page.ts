@@ -13,9 +13,16 @@ import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { Tombstone } from '../../../ui/tombstone';
-import { type Preview, type ReadingChoices, Samples, oneSample } from '../data/samples';
+import {
+  type DoubtfulLines as FoundLines,
+  type Preview,
+  type ReadingChoices,
+  Samples,
+  doubtfulLinesOf,
+  oneSample,
+} from '../data/samples';
 import { orderWords } from '../ui/date-orders';
-import { DoubtfulLines } from '../ui/doubtful-lines';
+import { DoubtfulLines, type Looked } from '../ui/doubtful-lines';
 import { readingFinding } from '../ui/findings';
 import { PreviewTable } from '../ui/preview-table';
 import { ReadingForm } from '../ui/reading-form';
@@ -77,7 +84,10 @@ import { SampleSteps } from '../ui/sample-steps';
           </div>
         }
         <ts-preview-table [preview]="view" />
-        <ts-doubtful-lines [preview]="view" />
+        <ts-problems [error]="found.error()" />
+        @if (doubtful(); as those) {
+          <ts-doubtful-lines [found]="those.found" [looked]="those.looked" />
+        }
       } @else if (looking.busy()) {
         <p class="ts-second" role="status">Looking at the file</p>
       }
@@ -141,12 +151,28 @@ export class ReadingPage {
     if (preview) return readingFinding(preview);
     return this.sample.hasValue() && !this.mayRead() ? this.settledWords() : null;
   });
-  /** What the last reading, and then what the preview, found wrong with the file. */
+  private readonly lastProblems = computed(() =>
+    this.sample.hasValue() && !this.underWay() ? this.sample.value().problems : [],
+  );
+  /** What the preview finds wrong with the file, else what the last reading found. */
   protected readonly fileProblems = computed(() => {
     const shown = this.preview()?.problems ?? [];
-    const last = this.sample.hasValue() && !this.underWay() ? this.sample.value().problems : [];
-    const problems = shown.length > 0 ? shown : last;
+    const problems = shown.length > 0 ? shown : this.lastProblems();
     return problems.length === 0 ? null : new Problem(422, 'file', 'The file cannot be read like this', '', problems);
+  });
+  /** Changes when a reading begins and ends, so that its lines are asked for once it has ended. */
+  private readonly refused = computed(() => this.mayRead() && this.lastProblems().length > 0);
+  protected readonly found = doubtfulLinesOf(
+    () => this.modelId(),
+    () => this.sampleId(),
+    () => this.refused(),
+  );
+  /** The lines of these problems. */
+  protected readonly doubtful = computed<{ found: FoundLines; looked: Looked } | null>(() => {
+    const preview = this.preview();
+    if (preview && preview.problems.length > 0)
+      return { found: preview.doubtful, looked: preview.looked.whole ? 'file' : 'part' };
+    return this.found.hasValue() ? { found: this.found.value(), looked: 'reading' } : null;
   });
   protected readonly signWords = signWords;
   protected readonly orderWords = orderWords;

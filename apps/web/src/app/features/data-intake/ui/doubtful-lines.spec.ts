@@ -1,12 +1,13 @@
 import { type ComponentFixture, TestBed } from '@angular/core/testing';
-import type { Preview } from '@tallystone/contracts/samples/reading';
-import { DoubtfulLines } from './doubtful-lines';
+import type { DoubtfulLines as Found } from '@tallystone/contracts/samples/reading';
+import { DoubtfulLines, type Looked } from './doubtful-lines';
 
 describe('the doubtful lines of a file', () => {
   let fixture: ComponentFixture<DoubtfulLines>;
   const page = (): HTMLElement => fixture.nativeElement as HTMLElement;
-  const show = (doubtful: Preview['doubtful'], whole = true): void => {
-    fixture.componentRef.setInput('preview', { doubtful, looked: { records: 90, bytes: 900, whole } });
+  const show = (found: Found, looked: Looked = 'file'): void => {
+    fixture.componentRef.setInput('found', found);
+    fixture.componentRef.setInput('looked', looked);
     fixture.detectChanges();
   };
   const texts = (selector: string): string[] =>
@@ -32,8 +33,13 @@ describe('the doubtful lines of a file', () => {
   });
 
   it('say how many there are beyond those that are listed', () => {
-    show({ count: 70, lines: [{ line: 2, record: 1, text: '1', clipped: false, doubts: ['1 field'] }] }, false);
+    const lines = [{ line: 2, record: 1, text: '1', clipped: false, doubts: ['1 field'] }];
+    show({ count: 70, lines }, 'part');
     expect(texts('p')).toEqual(['70 lines of the part of the file that was looked at are doubtful; these are the first 1.']);
+    show({ count: 70, lines }, 'reading');
+    expect(texts('p')).toEqual(['When the file was last read, 70 lines of it were doubtful; these are the first 1.']);
+    show({ count: 1, lines }, 'reading');
+    expect(texts('p')).toEqual(['When the file was last read, 1 line of it was doubtful.']);
   });
 
   it('take no room where there are none', () => {

@@ -1,8 +1,13 @@
 import { ChangeDetectionStrategy, Component, computed, input } from '@angular/core';
-import type { DoubtfulLine, Preview } from '@tallystone/contracts/samples/reading';
+import type { DoubtfulLine, DoubtfulLines as Found } from '@tallystone/contracts/samples/reading';
 import { type Column } from '../../../ui/column';
 import { DenseTable } from '../../../ui/dense-table';
 import { count, plural } from '../../../ui/numbers';
+
+/** Where doubtful lines were looked for: in the whole file or a part of it under the choices shown, or when the file was last read. */
+export type Looked = 'file' | 'part' | 'reading';
+
+const parts = { file: 'of the file', part: 'of the part of the file that was looked at', reading: '' };
 
 /** The lines of the file in which the reader finds something wrong, as they stand there, each with what it is. Nothing where there are none. */
 @Component({
@@ -10,14 +15,14 @@ import { count, plural } from '../../../ui/numbers';
   changeDetection: ChangeDetectionStrategy.OnPush,
   imports: [DenseTable],
   template: `
-    @if (preview().doubtful.count > 0) {
+    @if (found().count > 0) {
       <section aria-label="Doubtful lines">
         <h3>Doubtful lines</h3>
         <p>{{ finding() }}</p>
         <ts-table
           caption="Doubtful lines of the file"
           [columns]="columns"
-          [rows]="preview().doubtful.lines"
+          [rows]="found().lines"
           [identify]="byLine"
           [copyable]="false"
         />
@@ -33,14 +38,17 @@ import { count, plural } from '../../../ui/numbers';
   `,
 })
 export class DoubtfulLines {
-  readonly preview = input.required<Preview>();
+  readonly found = input.required<Found>();
+  readonly looked = input.required<Looked>();
 
   protected readonly finding = computed(() => {
-    const { doubtful, looked } = this.preview();
-    const part = looked.whole ? 'of the file' : 'of the part of the file that was looked at';
-    const all = doubtful.count === 1 ? `1 line ${part} is doubtful` : `${plural(doubtful.count, 'line')} ${part} are doubtful`;
-    const shown = doubtful.lines.length;
-    return shown < doubtful.count ? `${all}; these are the first ${count(shown)}.` : `${all}.`;
+    const { lines, count: all } = this.found();
+    const number = plural(all, 'line');
+    const said =
+      this.looked() === 'reading'
+        ? `When the file was last read, ${number} of it ${all === 1 ? 'was' : 'were'} doubtful`
+        : `${number} ${parts[this.looked()]} ${all === 1 ? 'is' : 'are'} doubtful`;
+    return lines.length < all ? `${said}; these are the first ${count(lines.length)}.` : `${said}.`;
   });
 
   protected readonly columns: readonly Column<DoubtfulLine>[] = [
