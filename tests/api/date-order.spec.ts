@@ -3,7 +3,7 @@ import { mkdtempSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
 import type { ColumnList } from '@tallystone/contracts/samples/columns';
-import type { Definition } from '@tallystone/contracts/samples/definition';
+import type { Definition, DraftContent } from '@tallystone/contracts/samples/definition';
 import type { Preview } from '@tallystone/contracts/samples/reading';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import type { ValidationWork } from '@tallystone/contracts/validation/schema';
@@ -43,6 +43,57 @@ const definitionOf = async (csv: string): Promise<Definition> => {
     .body as Definition;
 };
 
+/**
+ * Fits, freezes and replays a definition: from the file by the command, and by the validator's run from the file as it is stored. Both come to the numbers of
+ * the version.
+ */
+async function replays({ id, counts }: Definition, csv: string): Promise<Specification> {
+  const { id: binningId } = await classApplicants(modeller, modelId, id);
+  const fit = await fitPath(modeller, modelId, binningId, { folds: { count: 5, seed: 1, classing: 'woe' } });
+  const path = (await modeller.get(`/api/fits/${fit.id}/path`).expect(200)).body as { crossValidation: { minimum: number } };
+  await choose(modeller, fit.id, { index: path.crossValidation.minimum, rule: 'minimum' });
+  await scale(modeller, fit.id);
+  const version = await freeze(modeller, modelId, fit.id);
+  const specification = await modeller.get(`/api/versions/${version.id}/specification`).expect(200);
+  if (counts.partitions.outOfTime.rows > 0) {
+    const opening = { reason: 'The scorecard is frozen: how does it do?' };
+    await modeller.post(`/api/sample-definitions/${id}/out-of-time`).send(opening).expect(201);
+  }
+  const result = await modeller.get(`/api/versions/${version.id}/result`).expect(200);
+
+  const folder = mkdtempSync(join(tmpdir(), 'tallystone-dates-'));
+  try {
+    const at = (name: string): string => join(folder, name);
+    writeFileSync(at('spec.json'), specification.text);
+    writeFileSync(at('result.json'), result.text);
+    writeFileSync(at('sample.csv'), csv);
+    const args = [
+      '--specification',
+      at('spec.json'),
+      '--data',
+      at('sample.csv'),
+      '--out',
+      at('own.json'),
+      '--expect',
+      at('result.json'),
+    ];
+    const printed = execFileSync(process.execPath, [builtPath('cli/replicate'), ...args], {
+      encoding: 'utf8',
+    });
+    expect(printed).toContain('all equal');
+  } finally {
+    rmSync(folder, { recursive: true });
+  }
+
+  await writeTexts(modeller, version.id);
+  await act(modeller, version.id, { act: 'submit', statement: 'Ready for review' });
+  await act(validator, version.id, { act: 'start', statement: 'Full scope' });
+  await replicate(validator, version.id, 'same code');
+  const { replications } = (await validator.get(`/api/versions/${version.id}/validation`).expect(200)).body as ValidationWork;
+  expect(replications).toMatchObject([{ matches: true, differing: 0, scoresEqual: true }]);
+  return JSON.parse(specification.text) as Specification;
+}
+
 describe('dates written day first', () => {
   it('are proposed with the value that decides, and read as ISO dates by both readers', async () => {
     const read = await modeller.sample(modelId, dayFirst);
@@ -80,48 +131,8 @@ describe('dates written day first', () => {
     expect(mine.counts).toEqual(other.counts);
     expect(mine.counts.partitions.outOfTime.rows).toBeGreaterThan(100);
 
-    const { id: binningId } = await classApplicants(modeller, modelId, mine.id);
-    const fit = await fitPath(modeller, modelId, binningId, { folds: { count: 5, seed: 1, classing: 'woe' } });
-    const path = (await modeller.get(`/api/fits/${fit.id}/path`).expect(200)).body as { crossValidation: { minimum: number } };
-    await choose(modeller, fit.id, { index: path.crossValidation.minimum, rule: 'minimum' });
-    await scale(modeller, fit.id);
-    const version = await freeze(modeller, modelId, fit.id);
-    const specification = await modeller.get(`/api/versions/${version.id}/specification`).expect(200);
-    expect((JSON.parse(specification.text) as Specification).data.dateOrder).toBe('day-month-year');
-    const opening = { reason: 'The scorecard is frozen: how does it do?' };
-    await modeller.post(`/api/sample-definitions/${mine.id}/out-of-time`).send(opening).expect(201);
-    const result = await modeller.get(`/api/versions/${version.id}/result`).expect(200);
-
-    const folder = mkdtempSync(join(tmpdir(), 'tallystone-dates-'));
-    try {
-      const at = (name: string): string => join(folder, name);
-      writeFileSync(at('spec.json'), specification.text);
-      writeFileSync(at('result.json'), result.text);
-      writeFileSync(at('sample.csv'), dayFirst);
-      const args = [
-        '--specification',
-        at('spec.json'),
-        '--data',
-        at('sample.csv'),
-        '--out',
-        at('own.json'),
-        '--expect',
-        at('result.json'),
-      ];
-      const printed = execFileSync(process.execPath, [builtPath('cli/replicate'), ...args], {
-        encoding: 'utf8',
-      });
-      expect(printed).toContain('all equal');
-    } finally {
-      rmSync(folder, { recursive: true });
-    }
-
-    await writeTexts(modeller, version.id);
-    await act(modeller, version.id, { act: 'submit', statement: 'Ready for review' });
-    await act(validator, version.id, { act: 'start', statement: 'Full scope' });
-    await replicate(validator, version.id, 'same code');
-    const { replications } = (await validator.get(`/api/versions/${version.id}/validation`).expect(200)).body as ValidationWork;
-    expect(replications).toMatchObject([{ matches: true, differing: 0, scoresEqual: true }]);
+    const specification = await replays(mine, dayFirst);
+    expect(specification.data.dateOrder).toBe('day-month-year');
   }, 240_000);
 
   it.each([
@@ -148,4 +159,58 @@ describe('dates written day first', () => {
     expect(date).toMatchObject({ kind: 'categorical', flags: [{ code: 'doubtful-dates' }] });
     expect(date?.flags[0].finding).toContain('read the file again with their date order');
   }, 60_000);
+});
+
+describe('dates with a time', () => {
+  const clocks = ['T10:15:00Z', ' 10:15', 'T23:59:59.5-05:00'];
+  const timed = iso.split('\n').map((line, row) => line.replace(/,(\d{4}-\d\d-\d\d),/, (_, day: string) => `,${row % 4 === 3 ? day.replaceAll('-', '/') : day + clocks[row % 4]},`)).join('\n'); // prettier-ignore
+
+  it('that were read as their day split out-of-time as ISO dates do, and the version replays to the same numbers', async () => {
+    const [mine, other] = [await definitionOf(timed), await definitionOf(iso)];
+    expect(mine.counts).toEqual(other.counts);
+    expect(mine.counts.partitions.outOfTime.rows).toBeGreaterThan(100);
+    const { data } = await replays(mine, timed);
+    expect(data).toMatchObject({ dateTimes: 'day' });
+    expect(data).not.toHaveProperty('dateOrder');
+  }, 240_000);
+
+  it('that were kept as texts are categories and values of rules, in the version and when it replays', async () => {
+    const batches = ['2024-03-04 09:00', '2024-03-04 17:30', '2024-03-05T09:00:00Z', '2024/03/05', '2024-03-06 09:00'];
+    // Two batches of one day with a risk of their own: read as days they would be one.
+    const batchOf = (line: string, row: number): string => batches[line.endsWith(',1') ? row % 2 : row % 5];
+    const text = iso.split('\n').map((line, row) => (line === '' ? '' : `${row === 0 ? 'batch' : batchOf(line, row)},${line}`)).join('\n'); // prettier-ignore
+    const { path } = await modeller.sample(modelId, text, { dateTimes: 'text' });
+    const batch = (await columnsOf(path)).columns.find(({ column }) => column === 'batch');
+    expect(batch).toMatchObject({ kind: 'categorical', hashed: false });
+    const { body, headers } = await modeller.get(`${path}/draft`).expect(200);
+    const draft = body.content as DraftContent;
+    const content: DraftContent = {
+      ...draft,
+      columns: draft.columns.map((entry) => {
+        const role = ['batch', 'age', 'home'].includes(entry.column) ? 'characteristic' : entry.column === 'bad' ? 'outcome' : 'not used';
+        return { ...entry, role, reason: 'as an example' };
+      }),
+      exclusions: [{ reason: 'A batch that was entered twice', combine: 'all', tests: [{ column: 'batch', in: ['2024/03/05'] }] }],
+      partition: { by: 'seed', seed: 7, holdOutShare: 0.3, outOfTime: null },
+    }; // prettier-ignore
+    const saved = await modeller.put(`${path}/draft`).set('If-Match', headers['etag']).send(content).expect(200);
+    expect(saved.body.problems).toEqual([]);
+    const started = await modeller.post(`${path}/definitions`).send({ revision: saved.body.revision }).expect(202);
+    const run = await modeller.ended(started.body.id as string);
+    const { definitionId } = run.result as { definitionId: string };
+    const definition = (await modeller.get(`${path}/definitions/${definitionId}`).expect(200)).body as Definition;
+    const excluded = text.split('\n').filter((line) => line.startsWith('2024/03/05,')).length;
+    expect(excluded).toBeGreaterThan(50);
+    expect(definition.counts.waterfall.find(({ kind }) => kind === 'exclusion')).toMatchObject({
+      label: 'A batch that was entered twice',
+      out: excluded,
+    });
+
+    const { data, characteristics } = await replays(definition, text);
+    // What is left out means the same: no specification gets another fingerprint for saying no.
+    expect(data).not.toHaveProperty('dateTimes');
+    const groups = characteristics.find(({ column }) => column === 'batch');
+    expect(groups).toMatchObject({ kind: 'categorical' });
+    expect(JSON.stringify(groups)).toContain('2024-03-04 17:30');
+  }, 240_000);
 });

@@ -1,4 +1,6 @@
 import { createHash } from 'node:crypto';
+import type { Result } from '@tallystone/contracts/result/types';
+import type { Specification } from '@tallystone/contracts/specification/types';
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { readForReplay } from '../reading/index';
@@ -137,6 +139,52 @@ describe('round trips', () => {
     );
     expect(results).toBeGreaterThan(100);
   });
+
+  describe('of a file whose dates have times', () => {
+    const days = inventedSample(400);
+    const writings = ['2025-MM-15T10:15:00Z', '2025/MM/15', '2025-MM-15 23:59:59.5 -05:00', '2025-MM-15', '15/MM/2025 10:15'];
+    const timed = {
+      ...days,
+      applied_on: days['applied_on'].map((day, row) => writings[row % 5].replace('MM', day.slice(5, 7))),
+      batch: days['age'].map((_, row) => (row % 3 === 0 ? '2025-03-04 09:00' : row % 3 === 1 ? '2025-03-04 17:30' : '1900-01-01 00:00')),
+    };
+    const missing = ['', 'NA', '1900-01-01 00:00'];
+    const resultOf = (specification: Specification, source: Parameters<typeof replay>[0]['source']): Result =>
+      replay({ specification, specificationSha256: none, dataSha256: none, source, version: '1' }).result;
+    const fromFile = async (specification: Specification): Promise<Result> =>
+      resultOf(specification, (await readForReplay(inOne(csvOf(timed)), specification)).source);
+
+    it('sees days where they are read as such: in rules, out-of-time and limits', async () => {
+      const rules = {
+        exclusions: [
+          { reason: 'before the policy', column: 'applied_on', below: '2025-02-15' },
+          { reason: 'a day of an audit', column: 'applied_on', in: ['2025-06-15'] },
+          { reason: 'no batch', column: 'batch', missing: true },
+        ],
+        partition: { seed: 7, holdOutShare: 0.3, outOfTime: { column: 'applied_on', from: '2025-11-15', to: null } },
+      };
+      const read = await fromFile(specificationOf({ ...rules, data: { missing, dateOrder: 'day-month-year', dateTimes: 'day' } }));
+      const ofDays = { ...timed, applied_on: days['applied_on'], batch: timed.batch.map((text) => (missing.includes(text) ? text : '2025-03-04')) };
+      expect(read).toEqual(resultOf(specificationOf({ ...rules, data: { missing } }), sourceOfSample(ofDays)));
+      expect(read.counts.excluded[0].rows).toBe(days['applied_on'].filter((day) => day < '2025-02-15').length);
+      for (const rows of [read.counts.outOfTime.rows, ...read.counts.excluded.map((one) => one.rows)]) expect(rows).toBeGreaterThan(10);
+    });
+
+    it.each([['text'], [undefined]] as const)('sees texts where they stay as they stand: %s', async (dateTimes) => {
+      const rules = {
+        exclusions: [{ reason: 'entered twice', column: 'applied_on', in: ['2025/06/15', '2025-06-15T10:15:00Z'] }],
+        characteristics: [{ column: 'batch', kind: 'categorical', groups: [['2025-03-04 09:00'], ['2025-03-04 17:30']] }],
+      };
+      const specification = specificationOf({ ...rules, data: { missing, ...(dateTimes && { dateTimes }) } });
+      const read = await fromFile(specification);
+      expect(read).toEqual(resultOf(specification, sourceOfSample(timed)));
+      expect(read.counts.excluded[0].rows).toBe(timed.applied_on.filter((text) => rules.exclusions[0].in.includes(text)).length);
+      expect(read.counts.excluded[0].rows).toBeGreaterThan(10);
+      // Read as days the same rule takes out nobody.
+      const asDays = await fromFile(specificationOf({ ...rules, data: { missing, dateTimes: 'day' } }));
+      expect(asDays.counts.excluded[0].rows).toBe(0);
+    });
+  }); // prettier-ignore
 });
 
 async function* inOne(bytes: Buffer): AsyncGenerator<Buffer> {
