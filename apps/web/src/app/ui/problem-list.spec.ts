@@ -33,4 +33,16 @@ describe('ProblemList', () => {
     expect(text).toContain('Request r-9');
     expect((fixture.nativeElement as HTMLElement).querySelector('[role=alert]')).not.toBeNull();
   });
+
+  it('leaves how many and which to the message, which says it', async () => {
+    const fixture = TestBed.createComponent(ProblemList);
+    const message = 'Line 4 is not UTF-8. 2 lines in all: 4, 6.';
+    const problem = new Problem(422, 'file', 'The file cannot be read like this', '', [
+      { code: 'not-in-encoding', message, where: { line: 4, lines: '4, 6', count: 2 } },
+    ]);
+    fixture.componentRef.setInput('error', problem);
+    await fixture.whenStable();
+    const item = (fixture.nativeElement as HTMLElement).querySelector('li');
+    expect(item?.textContent?.replace(/\s+/g, ' ').trim()).toBe(`line 4 ${message}`);
+  });
 });

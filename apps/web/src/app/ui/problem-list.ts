@@ -1,6 +1,8 @@
 import { ChangeDetectionStrategy, Component, computed, input } from '@angular/core';
 import { type Problem, asProblem } from '../core/http/problem';
 
+const saidAlready: readonly string[] = ['lines', 'values', 'count'];
+
 /**
  * What went wrong, where, and what to do next: every problem of the input at once. Give it whatever a request rejected with.
  *
@@ -84,11 +86,11 @@ export class ProblemList {
   protected readonly problem = computed<Problem | null>(() => (this.error() ? asProblem(this.error()) : null));
   protected readonly shown = computed(() => this.problem()?.problems.slice(0, this.limit()) ?? []);
 
-  /** { line: 812, column: 'income' } reads "line 812, column income". */
+  /** { line: 812, column: 'income' } reads "line 812, column income". How many lines or values, and which, the message says itself. */
   protected place(where: Readonly<Record<string, unknown>> | undefined): string | null {
     if (!where) return null;
     const parts = Object.entries(where)
-      .filter(([, value]) => value !== null && value !== undefined && typeof value !== 'object')
+      .filter(([key, value]) => value !== null && value !== undefined && typeof value !== 'object' && !saidAlready.includes(key))
       .map(([key, value]) => (key === 'path' || key === 'field' ? String(value) : `${key} ${String(value)}`));
     return parts.length > 0 ? parts.join(', ') : null;
   }
