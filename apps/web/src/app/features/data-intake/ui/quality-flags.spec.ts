@@ -53,6 +53,9 @@ describe('flags of the quality report', () => {
     expect(asked).toEqual([{ flag: expect.objectContaining({ column: 'fee' }), answer: 'not used' }]);
     const ofFile = list()[3].querySelectorAll('.ts-actions button');
     expect([...ofFile].map((button) => button.textContent?.trim())).toEqual(['Answer anew']);
+    // Whoever speaks to the page says what they see.
+    for (const button of [...buttons, ...ofFile])
+      expect(button.getAttribute('aria-label')).toMatch(new RegExp(`^${button.textContent?.trim()}: `));
   });
 
   it('offer nothing to those who only read', () => {

@@ -41,7 +41,7 @@ export interface AskedAnswer {
               <button
                 matButton
                 type="button"
-                [attr.aria-label]="'Accept: ' + entry.name"
+                [attr.aria-label]="(entry.flag.answer ? 'Answer anew' : 'Accept') + ': ' + entry.name"
                 (click)="answer.emit({ flag: entry.flag, answer: 'accepted' })"
               >
                 {{ entry.flag.answer ? 'Answer anew' : 'Accept' }}
