@@ -1,4 +1,4 @@
-import { groupCells, widestMove } from './group-cells';
+import { groupCells, moveFinding, widestMove } from './group-cells';
 
 const group = (label: string) => ({ label, kind: 'values' as const, rows: 0, goods: 0, bads: 0, unknown: 0 });
 const month = (name: string, ...groups: number[]) => ({
@@ -37,5 +37,14 @@ describe('values by month', () => {
   it('tell nothing from a single month', () => {
     expect(widestMove(groupCells({ ...detail, months: detail.months.slice(0, 2) }))).toBeNull();
     expect(widestMove([])).toBeNull();
+    expect(moveFinding([])).toContain('Too few rows');
+  });
+
+  it('tell in a sentence which group moves, and of none that it does', () => {
+    expect(moveFinding(groupCells(detail))).toBe(
+      'under 10 moves most: from 20.0\u202f% of the rows (2023-03) to 50.0\u202f% (2023-01).',
+    );
+    const single = { groups: [group('a value')], months: [month('2023-01', 50), month('2023-02', 70)] };
+    expect(moveFinding(groupCells(single))).toBe('The shares of the values are the same in every month.');
   });
 });

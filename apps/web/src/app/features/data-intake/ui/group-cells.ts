@@ -1,4 +1,5 @@
 import type { ColumnQualityDetail } from '@tallystone/contracts/samples/quality';
+import { binWords, share } from '../../../ui/numbers';
 
 /** Rows of one group in one month. */
 export interface GroupCell {
@@ -44,4 +45,13 @@ export function widestMove(cells: readonly GroupCell[]): { group: string; least:
   }
   const [widest] = [...ends.values()].sort((a, b) => b.most.share - b.least.share - (a.most.share - a.least.share));
   return { group: widest.least.group, ...widest };
+}
+
+/** That move in a sentence. */
+export function moveFinding(cells: readonly GroupCell[]): string {
+  const move = widestMove(cells);
+  if (!move) return 'Too few rows by month to tell how the values move.';
+  const { group, least, most } = move;
+  if (least.share === most.share) return 'The shares of the values are the same in every month.';
+  return `${binWords(group)} moves most: from ${share(least.share, 1)} of the rows (${least.month}) to ${share(most.share, 1)} (${most.month}).`;
 }

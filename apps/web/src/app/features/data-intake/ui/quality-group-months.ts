@@ -5,7 +5,7 @@ import type { Column } from '../../../ui/column';
 import { ElementWidth } from '../../../ui/element-width';
 import { FigureFrame, FigurePoint } from '../../../ui/figure-frame';
 import { binWords, plural, share } from '../../../ui/numbers';
-import { type GroupCell, groupCells, widestMove } from './group-cells';
+import { type GroupCell, groupCells, moveFinding } from './group-cells';
 import { monthTicks } from './month-ticks';
 
 const rowHeight = 22;
@@ -96,9 +96,5 @@ export class QualityGroupMonths {
       }));
   });
   protected readonly ticks = computed(() => monthTicks(this.x()));
-  protected readonly finding = computed(() => {
-    const move = widestMove(this.cells());
-    if (!move) return 'Too few rows by month to tell how the values move.';
-    return `${binWords(move.group)} moves most: from ${share(move.least.share, 1)} of the rows (${move.least.month}) to ${share(move.most.share, 1)} (${move.most.month}).`;
-  });
+  protected readonly finding = computed(() => moveFinding(this.cells()));
 }
