@@ -7,7 +7,7 @@ import type { Result } from '@tallystone/contracts/result/types';
 import type { Scorecard } from '@tallystone/contracts/scorecards/schema';
 import type { ValidationWork } from '@tallystone/contracts/validation/schema';
 import type { Version } from '@tallystone/contracts/versions/schema';
-import { expect, test } from '../support/browser';
+import { expect, pick, test } from '../support/browser';
 
 /**
  * The whole line in the browser, on the applications of Saltmarsh Mutual, by three people: the modeller brings the file in, classes, fits,
@@ -56,12 +56,6 @@ test.use({ actionTimeout: 60_000 });
 let modelId = '';
 let fitId = '';
 let versionId = '';
-
-/** Chooses an entry of a list that opens. */
-async function pick(within: Page | Locator, page: Page, label: string | RegExp, option: string | RegExp): Promise<void> {
-  await within.getByRole('combobox', { name: label }).click();
-  await page.getByRole('option', { name: option, exact: typeof option === 'string' }).click();
-}
 
 /** Goes to a step of the work through its rule. */
 async function toStep(page: Page, step: string): Promise<void> {

@@ -1,4 +1,4 @@
-import { type Page, test as base, expect } from '@playwright/test';
+import { type Locator, type Page, test as base, expect } from '@playwright/test';
 import type { SignIn } from './installation';
 
 interface Fixtures {
@@ -52,4 +52,10 @@ export async function signIn(page: Page, signIns: readonly SignIn[], role: strin
   await page.getByLabel('Password', { exact: true }).fill(person.password);
   await page.getByRole('button', { name: 'Sign in' }).click();
   await expect(page).not.toHaveURL(/sign-in/, { timeout: 30_000 });
+}
+
+/** Chooses an entry of a list that opens. */
+export async function pick(within: Page | Locator, page: Page, label: string | RegExp, option: string | RegExp): Promise<void> {
+  await within.getByRole('combobox', { name: label }).click();
+  await page.getByRole('option', { name: option, exact: typeof option === 'string' }).click();
 }
