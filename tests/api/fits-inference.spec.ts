@@ -176,7 +176,36 @@ describe('a prior correction', () => {
   }, 120_000);
 });
 
+describe('the fit with indeterminates as good and as bad', () => {
+  it('stands at the penalties of both rules, of the whole definition’s development, and tells nothing of out-of-time', async () => {
+    const { outcomeRefits: refits, crossValidation, kept, lambdas, holdOut } = await pathOf(plain.id);
+    expect(refits?.at.map(({ index }) => index)).toEqual([...new Set([crossValidation.oneStandardError, crossValidation.minimum])].sort((a, b) => a - b));
+    const { body } = await modeller.get(`${samplePath}/definitions/${definitionId}`).expect(200);
+    const { development, holdOut: held } = (body as Definition).counts.partitions;
+    expect(development.indeterminates).toBeGreaterThan(10);
+    expect(refits).toMatchObject({ partition: 'holdOut', rows: held.goods + held.bads, approvalRate: null });
+    for (const { index, lambda, cases } of refits?.at ?? []) {
+      expect(lambda).toBe(lambdas[index]);
+      const { goods, bads, indeterminates } = development;
+      expect(cases.map((one) => [one.indeterminates, one.goods, one.bads])).toEqual([
+        ['as they are', goods, bads],
+        ['as good', goods + indeterminates, bads],
+        ['as bad', goods, bads + indeterminates],
+      ]);
+      expect(cases[0]).toMatchObject({ kept: kept[index], rankCorrelation: 1, decisionsChanged: null });
+      expect(cases[0].gini).toBeCloseTo(2 * (holdOut[index]?.auc ?? NaN) - 1, 12);
+    }
+  });
+});
+
 describe('the document of such a version', () => {
+  it('prints the fit repeated with the indeterminates read otherwise', async () => {
+    const words = await documentWords(corrected.versionId);
+    expect(words).toContain('The fit repeated with the indeterminates of development read otherwise');
+    expect(words).toMatch(/Gini moves by [+−]?0\.\d{3} with every indeterminate good and by [+−]?0\.\d{3} with every one bad/);
+    expect(words).not.toContain('Fit repeated with indeterminates as good and as bad');
+  });
+
   it('says of the sample what the API says of it', async () => {
     const words = await documentWords(corrected.versionId);
     expect(words).toContain('age Age when applying years In whole years.');

@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import { Erasure } from '../samples/erasure';
 import { fitAbilities, fitListAbilities } from './abilities';
+import { OutcomeRefits } from './outcome-refits';
 
 /** A value that came back as a double: JSON has no infinity or NaN, so what cannot be computed is null. */
 const number = z.number();
@@ -245,6 +246,8 @@ export const FitPath = z
       folds: z.int(),
       classing: FoldClassing,
     }),
+    /** At the penalties of both rules; null where nothing is indeterminate, and absent where a path is from before this was made. */
+    outcomeRefits: OutcomeRefits.nullable().optional(),
     development: z.array(PenaltyMetrics.nullable()),
     holdOut: z.array(PenaltyMetrics.nullable()),
     /** Null while covered, or where the sample has no such rows: `outOfTimeState` says which. */

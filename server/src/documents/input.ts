@@ -2,6 +2,7 @@ import { z } from 'zod';
 import { ComparedMetrics } from '@tallystone/contracts/comparison/schema';
 import { resultSchema } from '@tallystone/contracts/result/schema';
 import { CharacteristicBalance } from '@tallystone/contracts/samples/balance';
+import { OutcomeRefits, Refit } from '@tallystone/contracts/fits/outcome-refits';
 import { RuleCounts, SensitivityCase } from '@tallystone/contracts/samples/definition';
 import { QualityGroup } from '@tallystone/contracts/samples/quality';
 import { specificationSchema } from '@tallystone/contracts/specification/schema';
@@ -141,12 +142,14 @@ export const OutcomeCounts = z.strictObject({
   byRule: RuleCounts.nullable(),
 });
 
-/** The fit again with another outcome definition, for example indeterminates as bad. */
+/** The fit again with the indeterminates as good and as bad, at the penalty of the version. */
 export const Sensitivity = z.strictObject({
   evidence: cited,
-  cases: z.array(
-    z.strictObject({ label: z.string(), goods: count, bads: count, kept: count, gini: maybe, rankCorrelation: maybe }),
-  ),
+  partition: OutcomeRefits.shape.partition,
+  rows: count,
+  approvalRate: z.number().nullable(),
+  /** Empty where no row of development is indeterminate. */
+  cases: z.array(Refit),
 });
 
 export const ColumnQuality = z.strictObject({

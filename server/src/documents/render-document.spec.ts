@@ -209,6 +209,13 @@ describe('the document of a complete version', () => {
     expect(words).toContain('all bad 9 000 1 350 13.0 % 3 857 779 16.8 %');
   });
 
+  it('says what the fit becomes with other readings of the indeterminates', () => {
+    expect(words).toContain('On the 4 321 goods and bads of the hold-out the Gini moves by +0.002 with every indeterminate good and by −0.018 with every one bad');
+    expect(words).toContain('all good 9 700 1 050 7 0.514 +0.002 0.996 1.2 %');
+    expect(words).toContain('all bad (not converged) 9 000 1 350 8 0.494 −0.018 0.981 3.4 %');
+    expect(words).toContain('Decisions at the same approval rate, 72.4 %.');
+  });
+
   it('holds each characteristic against development, by the thresholds and by chance', () => {
     expect(words).toContain(
       '1 characteristic is spread differently than in development, with an index above 0.25: Months since arrears.',
@@ -324,6 +331,7 @@ describe('a document with much missing', () => {
       segments: null,
       classing: null,
       protection: null,
+      sensitivity: null,
       outOfTime: { covered: true, openings: [] },
       penaltyChoice: null,
       stability: null,

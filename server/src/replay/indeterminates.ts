@@ -17,7 +17,8 @@ export interface IndeterminateCase {
   holdOut: KnownCounts;
 }
 
-const readings = [
+/** How an indeterminate row can be read, and its outcome then. */
+export const readings = [
   ['as they are', INDETERMINATE],
   ['as good', GOOD],
   ['as bad', BAD],

@@ -7,6 +7,7 @@ import { notConverged } from '../replay/cross-validation';
 import { type Evaluator, PARTITION_NAMES, evaluateFit, evaluatorOf } from '../replay/evaluate';
 import { type TrainedPath, keptOf, trainPaths } from '../replay/fit';
 import { badRate } from '../replay/fit-rows';
+import { outcomeRefits } from '../replay/outcome-refits';
 import { prepare } from '../replay/prepare';
 import { ReplayError, type ReplayProblem } from '../replay/problems';
 import type { SourceColumn } from '../replay/source';
@@ -89,8 +90,11 @@ export const fitPenaltyPath: Task<FitPathPayload, FitPathAnswer> = (
         );
       }
     });
+    progress('Fitting with the indeterminates as good and as bad', 0.99);
+    const { minimum, oneStandardError } = trained.crossValidation ?? { minimum: 0, oneStandardError: 0 };
+    const refits = outcomeRefits({ specification, prepared, coded, trained, source, crewFor, onFit: goOn, indices: [minimum, oneStandardError] });
     const kept = trained.fits.map((fit) => keptOf(fit, trained.terms, coded).filter(Boolean).length);
-    return { problems: null, path: pathOf(specification, trained, evaluator, kept, treatments, correction), metrics };
+    return { problems: null, path: { ...pathOf(specification, trained, evaluator, kept, treatments, correction), outcomeRefits: refits }, metrics };
   } catch (error) {
     if (error instanceof ReplayError) return { problems: error.problems };
     throw error;

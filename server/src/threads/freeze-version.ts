@@ -1,8 +1,10 @@
 import { probabilityOfBad } from '@tallystone/numeric';
+import type { OutcomeRefits } from '@tallystone/contracts/fits/outcome-refits';
 import type { PartitionName, Result } from '@tallystone/contracts/result/types';
 import type { Specification } from '@tallystone/contracts/specification/types';
 import { evaluateFit, evaluatorOf, PARTITION_NAMES, type Evaluator, type Evaluation } from '../replay/evaluate';
 import { ReplayError, type ReplayProblem } from '../replay/problems';
+import { outcomeRefits } from '../replay/outcome-refits';
 import { replay } from '../replay/replay';
 import { scoreFingerprint } from '../replay/score-fingerprint';
 import type { SourceColumn } from '../replay/source';
@@ -35,7 +37,7 @@ interface BinCounts {
 
 export type FreezeAnswer =
   | { readonly problems: readonly ReplayProblem[] }
-  | { readonly problems: null; readonly result: Result; readonly scores: { sha256: string; count: number }; readonly figures: VersionFigures };
+  | { readonly problems: null; readonly result: Result; readonly scores: { sha256: string; count: number }; readonly figures: VersionFigures; readonly refits: OutcomeRefits | null };
 
 /** Replays the specification of a version from the stored columns: the modeller's half. */
 export const freezeVersion: Task<FreezePayload, FreezeAnswer> = ({ specification, rows, columns, ...rest }, { cancelled, progress }) => {
@@ -63,12 +65,24 @@ export const freezeVersion: Task<FreezePayload, FreezeAnswer> = ({ specification
     if (!scores) throw new Error('A version has a scorecard: no linear characteristic can be in it');
     const evaluator = evaluatorOf(specification, replayed.prepared, replayed.coded, replayed.fitted.trained.tables);
     const evaluation = evaluateFit(evaluator, replayed.fitted.terms, replayed.fitted.model, { figures: 'path' });
-    return { problems: null, result: replayed.result, scores, figures: figuresOf(replayed.result, evaluator, evaluation) };
+    const { prepared, coded, fitted } = replayed;
+    const { trained, index } = fitted;
+    const approvalRate = approvedAt(specification.cutOff, evaluator, evaluation);
+    const refits = outcomeRefits({ specification, prepared, coded, trained, indices: [index], approvalRate, crewFor, onFit: goOn });
+    return { problems: null, result: replayed.result, scores, figures: figuresOf(replayed.result, evaluator, evaluation), refits };
   } catch (error) {
     if (error instanceof ReplayError) return { problems: error.problems };
     throw error;
   }
 };
+
+/** Share of the applicants that the refits are held against whose score before rounding reaches the cut-off. */
+function approvedAt(cutOff: number | null, { partitions }: Evaluator, { scores }: Evaluation): number | undefined {
+  if (cutOff === null) return undefined;
+  const both = (name: PartitionName): boolean => partitions[name].outcome.includes(0) && partitions[name].outcome.includes(1);
+  const held = scores[both('holdOut') ? 'holdOut' : 'development'].scores;
+  return held.reduce((count, score) => count + Number(score >= cutOff), 0) / held.length;
+}
 
 function figuresOf(result: Result, evaluator: Evaluator, evaluation: Evaluation): VersionFigures {
   const present = PARTITION_NAMES.filter((name) => evaluator.partitions[name].rows.length > 0);

@@ -1,3 +1,4 @@
+import type { Refit } from '@tallystone/contracts/fits/outcome-refits';
 import type { SensitivityCase } from '@tallystone/contracts/samples/definition';
 import { isByRule, listed, outcomeColumns, outcomeWords } from '@tallystone/contracts/specification/outcome';
 import type { Writer } from '../page/writer';
@@ -144,31 +145,53 @@ function writeReadings(writer: Writer): void {
 
 /** The fit again on other outcomes. */
 function writeRefits(writer: Writer): void {
-  const { sensitivity } = writer.input;
+  const { sensitivity, outcomeCounts } = writer.input;
   if (sensitivity === null) {
     writer.notEvidenced('Fit repeated with indeterminates as good and as bad');
     return;
   }
-  writer.table('The fit with other outcome definitions', sensitivity.evidence, {
-    columns: [
-      { title: 'Definition', grow: 1 },
-      { title: 'Goods', align: 'right' },
-      { title: 'Bads', align: 'right' },
-      { title: 'Kept', align: 'right' },
-      { title: 'Gini', align: 'right' },
-      { title: 'Rank correlation', align: 'right' },
-    ],
-    rows: sensitivity.cases.map((entry) => ({
-      cells: [
-        entry.label,
-        whole(entry.goods),
-        whole(entry.bads),
-        whole(entry.kept),
-        area(entry.gini),
-        fixed(entry.rankCorrelation, 3),
+  const { cases, approvalRate } = sensitivity;
+  if (cases.length === 0) {
+    // Where none is indeterminate at all, that was said already.
+    if (outcomeCounts?.readings?.length !== 0) writer.text(`No row of development is indeterminate: the fit has no other reading ${writer.cite(sensitivity.evidence)}.`);
+    return;
+  }
+  const change = (gini: number): string => `${gini > cases[0].gini ? '+' : ''}${area(gini - cases[0].gini)}`;
+  const of = (wanted: Refit['indeterminates']): string => change(cases.find(({ indeterminates }) => indeterminates === wanted)?.gini ?? NaN);
+  const where = sensitivity.partition === 'holdOut' ? 'the hold-out' : 'development';
+  writer.table(
+    'The fit repeated with the indeterminates of development read otherwise',
+    sensitivity.evidence,
+    {
+      columns: [
+        { title: 'Indeterminates', grow: 1 },
+        { title: 'Goods', align: 'right' },
+        { title: 'Bads', align: 'right' },
+        { title: 'Kept', align: 'right' },
+        { title: 'Gini', align: 'right' },
+        { title: 'Change', align: 'right' },
+        { title: 'Rank correlation', align: 'right' },
+        { title: 'Decisions changed', align: 'right' },
       ],
-    })),
-  });
+      rows: cases.map((entry) => ({
+        cells: [
+          readingName[entry.indeterminates] + (entry.converged ? '' : ' (not converged)'),
+          whole(entry.goods),
+          whole(entry.bads),
+          whole(entry.kept),
+          area(entry.gini),
+          entry.indeterminates === 'as they are' ? '–' : change(entry.gini),
+          fixed(entry.rankCorrelation, 3),
+          percent(entry.decisionsChanged),
+        ],
+      })),
+    },
+    `On the ${whole(sensitivity.rows)} goods and bads of ${where} the Gini moves by ${of('as good')} with every indeterminate good and by ${of('as bad')} with every one bad.`,
+  );
+  writer.note(
+    `Bins, partition and penalty are held; WOE and coefficients are made anew. Rank correlation: Spearman, with the scores of the fit as defined. ` +
+      (approvalRate === null ? 'Decisions are not compared: no cut-off is stated.' : `Decisions at the same approval rate, ${percent(approvalRate)}.`),
+  );
 }
 
 function writeWindows(writer: Writer): void {

@@ -188,7 +188,22 @@ export function inventedInput(count = 12): DocumentInput {
       })),
       byRule: null,
     },
-    sensitivity: null,
+    sensitivity: {
+      evidence: 'E-4',
+      partition: 'holdOut',
+      rows: 4_321,
+      approvalRate: 0.724,
+      cases: (['as they are', 'as good', 'as bad'] as const).map((indeterminates, place) => ({
+        indeterminates,
+        goods: [9_000, 9_700, 9_000][place],
+        bads: [1_050, 1_050, 1_350][place],
+        kept: [7, 7, 8][place],
+        converged: place < 2,
+        gini: [0.512, 0.514, 0.494][place],
+        rankCorrelation: [1, 0.996, 0.981][place],
+        decisionsChanged: [0, 0.012, 0.034][place],
+      })),
+    },
     dictionary: {
       evidence: 'E-1',
       lines: result.characteristics

@@ -4,6 +4,7 @@ import type { Protection } from '@tallystone/contracts/permissions/schema';
 import type { CharacteristicBalance } from '@tallystone/contracts/samples/balance';
 import { noLongerReplicable } from '@tallystone/contracts/samples/erased-words';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
+import type { OutcomeRefits } from '@tallystone/contracts/fits/outcome-refits';
 import type { RuleCounts, SampleDefinitionContent, SensitivityCase } from '@tallystone/contracts/samples/definition';
 import type { ColumnLabels, DictionaryEntry } from '@tallystone/contracts/samples/dictionary';
 import { takesPart } from '@tallystone/contracts/samples/flags';
@@ -62,7 +63,7 @@ interface FitEvidence {
   /** Absent in versions frozen before it was kept with them. */
   priorCorrection?: FitPath['priorCorrection'];
 }
-type PerformanceEvidence = Pick<VersionFigures, 'distributions' | 'bandCalibrations'> & Partial<Beside>;
+type PerformanceEvidence = Pick<VersionFigures, 'distributions' | 'bandCalibrations'> & Partial<Beside> & { readonly refits?: OutcomeRefits | null };
 
 /** Evidence with its number in the document. */
 interface Numbered<Content> {
@@ -186,7 +187,7 @@ export async function gatherDocument(context: Context, versionId: string, person
     waterfall: sample && waterfallOf(sample, specification, result),
     windows: sample && windowsOf(sample, specification),
     outcomeCounts: sample && outcomeCountsOf(sample),
-    sensitivity: null,
+    sensitivity: performance && sensitivityOf(performance),
     dictionary: sample && dictionaryOf(sample),
     quality: sample && {
       evidence: sample.number,
@@ -349,6 +350,14 @@ function dictionaryOf({ content, number }: Numbered<SampleEvidence>): DocumentIn
 /** Counted when the definition was confirmed; nothing of out-of-time is in it. */
 function outcomeCountsOf({ content, number }: Numbered<SampleEvidence>): DocumentInput['outcomeCounts'] {
   return { evidence: number, readings: content.counts?.sensitivity ?? null, byRule: content.counts?.byRule ?? null };
+}
+
+/** Null where the version was frozen before its fit was repeated. */
+function sensitivityOf({ content: { refits }, number }: Numbered<PerformanceEvidence>): DocumentInput['sensitivity'] {
+  if (refits === undefined) return null;
+  if (refits === null) return { evidence: number, partition: 'development', rows: 0, approvalRate: null, cases: [] };
+  const { partition, rows: count, approvalRate, at } = refits;
+  return { evidence: number, partition, rows: count, approvalRate, cases: at[0].cases };
 }
 
 function segmentsOf({ content, number }: Numbered<SampleEvidence>, performance: Numbered<PerformanceEvidence> | null): DocumentInput['segments'] {

@@ -90,6 +90,7 @@ export async function versionEvidence(
         psi: frozen.result.psi,
         distributions: frozen.figures.distributions,
         bandCalibrations: frozen.figures.bandCalibrations,
+        refits: frozen.refits,
         ...beside,
       },
     },

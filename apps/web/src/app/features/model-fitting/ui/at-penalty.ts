@@ -3,6 +3,7 @@ import { MatButtonModule } from '@angular/material/button';
 import type { FitPath } from '@tallystone/contracts/fits/schema';
 import { DASH, fixed, metric, points, share, significant } from '../../../ui/numbers';
 import { PartitionMark } from '../../../ui/partition-mark';
+import { Refits } from './refits-table';
 import { entryOrder, scorecardAt } from './path-view';
 
 /**
@@ -13,7 +14,7 @@ import { entryOrder, scorecardAt } from './path-view';
 @Component({
   selector: 'ts-at-penalty',
   changeDetection: ChangeDetectionStrategy.OnPush,
-  imports: [MatButtonModule, PartitionMark],
+  imports: [MatButtonModule, PartitionMark, Refits],
   templateUrl: './at-penalty.html',
   styleUrl: './at-penalty.scss',
 })
