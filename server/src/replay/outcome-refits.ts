@@ -9,7 +9,10 @@ import { gather } from './gather';
 import { readings } from './indeterminates';
 import { DEVELOPMENT, HOLD_OUT, INDETERMINATE, type Prepared } from './types';
 
-export interface OutcomeRefitsRequest extends Pick<FitRequest, 'specification' | 'prepared' | 'coded' | 'source' | 'crewFor' | 'onFit'> {
+export interface OutcomeRefitsRequest extends Pick<
+  FitRequest,
+  'specification' | 'prepared' | 'coded' | 'source' | 'crewFor' | 'onFit'
+> {
   /** The path of the fit as it is defined. */
   readonly trained: TrainedPath;
   /** Places on that path at which it is fitted again. */
@@ -60,7 +63,8 @@ export function outcomeRefits(request: OutcomeRefitsRequest): OutcomeRefits | nu
           converged: fitted[place].fit.status === 'converged',
           gini: 2 * auc(scores[run], outcome) - 1,
           rankCorrelation: finite(rankCorrelation(scores[0], scores[run])),
-          decisionsChanged: request.approvalRate === undefined ? null : decisionsChanged(scores[0], scores[run], request.approvalRate),
+          decisionsChanged:
+            request.approvalRate === undefined ? null : decisionsChanged(scores[0], scores[run], request.approvalRate),
         })),
       };
     }),
@@ -70,11 +74,21 @@ export function outcomeRefits(request: OutcomeRefitsRequest): OutcomeRefits | nu
 /** The penalties of these places and nothing to choose. */
 function pinned(specification: Specification, trained: TrainedPath, places: readonly number[]): Specification {
   const grid = places.map((place) => trained.fits[place].lambda);
-  return { ...specification, fit: { ...specification.fit, mixing: trained.mixing, lambda: { grid }, choose: 'value', folds: null } };
+  return {
+    ...specification,
+    fit: { ...specification.fit, mixing: trained.mixing, lambda: { grid }, choose: 'value', folds: null },
+  };
 }
 
 function readAs(prepared: Prepared, code: number): Prepared {
-  return { ...prepared, folds: null, foldCount: 0, outcome: prepared.outcome.map((outcome, row) => (outcome === INDETERMINATE && prepared.partition[row] === DEVELOPMENT ? code : outcome)) };
+  return {
+    ...prepared,
+    folds: null,
+    foldCount: 0,
+    outcome: prepared.outcome.map((outcome, row) =>
+      outcome === INDETERMINATE && prepared.partition[row] === DEVELOPMENT ? code : outcome,
+    ),
+  };
 }
 
 function countDevelopment(read: Prepared): { goods: number; bads: number } {

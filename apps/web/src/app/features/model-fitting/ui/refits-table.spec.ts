@@ -44,7 +44,9 @@ describe('the fit with indeterminates read otherwise', () => {
     const text = page.textContent.replaceAll(/\s+/g, ' ');
     expect(text).toContain('moves by +0.012 with every indeterminate good, by \u22120.020 with every one bad');
     expect(text).toContain('scored on the 640 applicants of the hold-out');
-    const rows = [...page.querySelectorAll('tbody tr')].map((row) => [...row.children].map((cell) => cell.textContent.replaceAll(/\s+/g, ' ').trim()));
+    const rows = [...page.querySelectorAll('tbody tr')].map((row) =>
+      [...row.children].map((cell) => cell.textContent.replaceAll(/\s+/g, ' ').trim()),
+    );
     expect(rows).toEqual([
       ['left out, as defined', '1 100', '7', '0.500', '1.000'],
       ['all good', '1 100', '7', '0.512', '0.993'],

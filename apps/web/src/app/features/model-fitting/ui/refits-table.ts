@@ -49,7 +49,8 @@ import { readingWords, refitsFinding } from './refits-view';
       </p>
     } @else {
       <p class="ts-caption">
-        The fit with indeterminates as good and as bad is worked out at the penalties of both rules, and for every version at its own.
+        The fit with indeterminates as good and as bad is worked out at the penalties of both rules, and for every version at its
+        own.
       </p>
     }
   `,
