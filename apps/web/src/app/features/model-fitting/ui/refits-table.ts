@@ -73,6 +73,15 @@ import { readingWords, refitsFinding } from './refits-view';
     th.ts-number {
       text-align: end;
     }
+    thead th {
+      font-weight: 600;
+      font-size: 13px;
+      line-height: 17px;
+    }
+    td {
+      font-size: 13px;
+      line-height: 24px;
+    }
     th,
     td {
       padding: 3px 6px 3px 0;
