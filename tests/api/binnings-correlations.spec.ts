@@ -1,5 +1,14 @@
-import type { Correlations } from '@tallystone/contracts/binnings/correlations';
-import { benchStability, edgeBeside, moveCut, readBench, readingInterval } from '@tallystone/numeric/bench';
+import type { CorrelationStanding, Correlations } from '@tallystone/contracts/binnings/correlations';
+import type { CharacteristicList } from '@tallystone/contracts/binnings/schema';
+import {
+  benchStability,
+  edgeBeside,
+  groupCategories,
+  moveCut,
+  moveMissing,
+  readBench,
+  readingInterval,
+} from '@tallystone/numeric/bench';
 import { correlation, varianceInflation } from '@tallystone/numeric/diagnostics/collinearity';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { BAD, DEVELOPMENT, GOOD } from '../../server/src/replay/types';
@@ -30,6 +39,35 @@ afterAll(() => world.server.stop());
 
 const read = async (): Promise<Correlations> =>
   (await world.modeller.get(`/api/binnings/${world.binning.id}/correlations`).expect(200)).body as Correlations;
+
+/** What the list says of them; the page of correlations must say the same. */
+async function standing(): Promise<CorrelationStanding> {
+  const { correlations } = await characteristicsOf(world.modeller, world.binning.id);
+  expect(await read()).toMatchObject(correlations);
+  return correlations;
+}
+
+/** Moves the first cut of a numeric characteristic by one fine class. */
+async function moveFirstCut(column: string): Promise<void> {
+  const { path, etag, detail } = await benchOf(world.modeller, world.binning.id, column);
+  const before = numeric(detail);
+  const edit = sent(before, moveCut(detail.fine, before, 0, edgeBeside(detail.fine, before, 0, 1)!));
+  await world.modeller
+    .put(path)
+    .set('If-Match', etag)
+    .send({ bins: edit.after, edits: [edit] })
+    .expect(200);
+}
+
+async function include(column: string, included: boolean, reason = ''): Promise<CharacteristicList> {
+  const { characteristics } = await characteristicsOf(world.modeller, world.binning.id);
+  const chosen = characteristics.filter((one) => one.column === column).map(({ id, revision }) => ({ id, revision }));
+  const { body } = await world.modeller
+    .post(`/api/binnings/${world.binning.id}/inclusions`)
+    .send({ characteristics: chosen, included, reason })
+    .expect(200);
+  return body as CharacteristicList;
+}
 
 /** The run that classing started, or the one given, has ended. */
 async function calculated(): Promise<Correlations> {
@@ -89,16 +127,11 @@ describe('correlations', () => {
   });
 
   it('say what has changed since, and are calculated anew once for all who ask', async () => {
-    const { path, etag, detail } = await benchOf(world.modeller, world.binning.id, 'age');
-    const before = numeric(detail);
-    const edit = sent(before, moveCut(detail.fine, before, 0, edgeBeside(detail.fine, before, 0, 1)!));
-    await world.modeller
-      .put(path)
-      .set('If-Match', etag)
-      .send({ bins: edit.after, edits: [edit] })
-      .expect(200);
+    expect(await standing()).toMatchObject({ changed: [], runId: null });
+    await moveFirstCut('age');
     const older = await read();
     expect(older.changed).toEqual(['age']);
+    expect(await standing()).toEqual({ calculatedAt: older.calculatedAt, changed: ['age'], runId: null });
     const url = `/api/binnings/${world.binning.id}/correlations`;
     await world.validator.post(url).send({}).expect(403);
     await world.stranger.get(url).expect(404);
@@ -106,18 +139,15 @@ describe('correlations', () => {
     await Promise.all(runs.map(({ body }) => world.modeller.ended((body as { runId: string }).runId)));
     const now = await calculated();
     expect(now.changed).toEqual([]);
+    expect(await standing()).toEqual({ calculatedAt: now.calculatedAt, changed: [], runId: null });
     expect(now.matrix[0][1]).not.toBe(older.matrix[0][1]);
     expect((await world.validator.get(url).expect(200)).body.abilities).toEqual([]);
   });
 
   it('leave out what is left out, without a new calculation', async () => {
-    const { characteristics } = await characteristicsOf(world.modeller, world.binning.id);
-    const chosen = characteristics.filter(({ column }) => column === 'branch_code').map(({ id, revision }) => ({ id, revision }));
     const before = await read();
-    await world.modeller
-      .post(`/api/binnings/${world.binning.id}/inclusions`)
-      .send({ characteristics: chosen, included: false, reason: 'Says what age says' })
-      .expect(200);
+    const list = await include('branch_code', false, 'Says what age says');
+    expect(list.correlations).toEqual({ calculatedAt: before.calculatedAt, changed: [], runId: null });
     const after = await read();
     expect(after.characteristics.map(({ column }) => column)).not.toContain('branch_code');
     expect(after.changed).toEqual([]);
@@ -125,5 +155,43 @@ describe('correlations', () => {
     expect(inflation(before)).toBeGreaterThan(3);
     expect(inflation(after)).toBeLessThan(1.2);
     expect((await characteristicsOf(world.modeller, world.binning.id)).characteristics[0].group).toBeNull();
+  });
+
+  it('no longer speak of what was changed while it was left out, once it is taken in', async () => {
+    await moveFirstCut('branch_code');
+    expect(await standing()).toMatchObject({ changed: [] });
+    expect((await include('branch_code', true)).correlations.changed).toEqual(['branch_code']);
+    expect(await standing()).toMatchObject({ changed: ['branch_code'] });
+    expect((await include('branch_code', false, 'Says what age says')).correlations.changed).toEqual([]);
+  });
+
+  it('no longer speak of what was classed anew, which the answer to it says', async () => {
+    const { characteristics } = await characteristicsOf(world.modeller, world.binning.id);
+    const chosen = characteristics.filter(({ column }) => column === 'home' || column === 'utilisation');
+    const { body } = await world.modeller
+      .post(`/api/binnings/${world.binning.id}/reclassings`)
+      .send({ characteristics: chosen.map(({ id, revision }) => ({ id, revision })), constraints: { mostBins: 2 }, reason: '' })
+      .expect(200);
+    expect((body as CharacteristicList).correlations.changed).toEqual(['utilisation', 'home']);
+    expect(await standing()).toMatchObject({ changed: ['utilisation', 'home'] });
+  });
+
+  it('miss nothing of a characteristic that has one bin and varies with nothing', async () => {
+    const { path, etag, detail } = await benchOf(world.modeller, world.binning.id, 'region');
+    if (detail.current.kind !== 'categorical') throw new Error('Not categorical');
+    const together = sent(detail.current, groupCategories(detail.fine, detail.current, detail.fine.categories, 0));
+    const whole = sent(together.after, moveMissing(together.after, 0, 'all regions'));
+    const { body } = await world.modeller
+      .put(path)
+      .set('If-Match', etag)
+      .send({ bins: whole.after, edits: [together, whole] })
+      .expect(200);
+    expect(body).toMatchObject({ included: true, bins: 1 });
+    expect((await standing()).changed).toContain('region');
+    const run = await world.modeller.post(`/api/binnings/${world.binning.id}/correlations`).send({}).expect(202);
+    await world.modeller.ended((run.body as { runId: string }).runId);
+    const now = await calculated();
+    expect(now.characteristics.map(({ column }) => column)).not.toContain('region');
+    expect(await standing()).toEqual({ calculatedAt: now.calculatedAt, changed: [], runId: null });
   });
 });

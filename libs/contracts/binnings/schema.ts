@@ -4,6 +4,7 @@ import { OutOfTimeState } from '../out-of-time/schema';
 import { Erasure } from '../samples/erasure';
 import { binningAbilities, binningListAbilities } from './abilities';
 import { AskedConstraints, Bins, Constraints, Fine } from './bins';
+import { CorrelationStanding } from './correlations';
 import { Edit, SentEdit } from './edits';
 
 const finite = z.number();
@@ -154,6 +155,8 @@ export const CharacteristicList = z
     characteristics: z.array(CharacteristicSummary),
     /** One sentence that says what they say. */
     finding: z.string(),
+    /** Whether `group` of each still speaks of the bins as they are. */
+    correlations: CorrelationStanding,
   })
   .meta({ id: 'CharacteristicList' });
 export type CharacteristicList = z.infer<typeof CharacteristicList>;

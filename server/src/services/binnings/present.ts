@@ -13,7 +13,7 @@ import type { Actor } from '../../models/person';
 import { abilitiesOnBinning, canEditBinning } from '../../policies/binnings';
 import { outOfTimeState } from '../out-of-time/cover';
 import { openingsOver } from '../out-of-time/openings';
-import { groupsOf } from './correlations';
+import { groupOf, groupsWithStanding } from './correlations';
 import { editsInEffect, editsNotCarried, presentEdit } from './edits';
 import type { FoundBinning } from './find-binning';
 import { type ListedCharacteristic, type OnBench, listCharacteristics } from './find-characteristic';
@@ -77,11 +77,11 @@ export async function presentCharacteristics(
   tx: Transaction | null = null,
 ): Promise<CharacteristicList> {
   const outOfTime = await outOfTimeState(sequelize, binning.definitionId, tx);
-  const groups = await groupsOf(sequelize, binning.id, tx);
+  const { groups, standing } = await groupsWithStanding(sequelize, binning.id, tx);
   const characteristics = (await listCharacteristics(sequelize, binning.id, tx)).map((one) =>
     presentSummary(one, outOfTime, groups.get(one.id) ?? null),
   );
-  return { characteristics, finding: findingOf(characteristics) };
+  return { characteristics, finding: findingOf(characteristics), correlations: standing };
 }
 
 /** The one sentence over the list: the first of these that has something to say. */
@@ -108,9 +108,10 @@ export async function presentDetail(
   tx: Transaction | null = null,
 ): Promise<CharacteristicDetail> {
   const outOfTime = await outOfTimeState(sequelize, binning.definitionId, tx);
+  const group = await groupOf(sequelize, { binningId: binning.id, characteristicId: characteristic.id }, tx);
   const { definition, automatic, constraints, fine, changedBy, changedAt } = characteristic;
   return {
-    ...presentSummary(characteristic, outOfTime, (await groupsOf(sequelize, binning.id, tx)).get(characteristic.id) ?? null),
+    ...presentSummary(characteristic, outOfTime, group),
     definition,
     current: binsOfEntry(definition),
     automatic,

@@ -15,6 +15,7 @@ import { mostReclassedAtOnce } from '@tallystone/contracts/binnings/limits';
 import { Task } from '../../../core/task';
 import { Ask } from '../../../ui/ask';
 import type { Column } from '../../../ui/column';
+import { DecisionNotice } from '../../../ui/decision-notice';
 import { CellTemplate, DenseTable } from '../../../ui/dense-table';
 import { plural } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
@@ -24,6 +25,7 @@ import { RunProgress } from '../../../ui/run-progress';
 import { SortInAddress } from '../../../ui/sort-in-address';
 import { type CharacteristicList, type CharacteristicSummary, Binnings, binningOf, characteristicsOf } from '../data/binnings';
 import { asPart, filtered, intervalText, partWords, riskTrend, shownParts, warningsOf } from '../ui/characteristic-filter';
+import { changedWords } from '../ui/correlation-reading';
 import { usualConstraints } from '../ui/constraints-form';
 import { OutOfTimeCover } from '../ui/out-of-time-cover';
 import type { ReclassAnswer, ReclassQuestion } from '../ui/reclass-dialog';
@@ -41,6 +43,7 @@ import type { ReclassAnswer, ReclassQuestion } from '../ui/reclass-dialog';
     MatInputModule,
     MatSelectModule,
     CellTemplate,
+    DecisionNotice,
     DenseTable,
     OutOfTimeCover,
     PageHeader,
@@ -87,6 +90,11 @@ export class CharacteristicsPage {
   protected readonly all = computed(() => (this.list.hasValue() ? this.list.value().characteristics : null));
   protected readonly rows = computed(() => filtered(this.all() ?? [], this.part(), this.search() ?? '', this.labels()));
   protected readonly finding = computed(() => (this.list.hasValue() ? this.list.value().finding : null));
+  /** Groups that no longer speak of the bins as they are; nothing while they are calculated anew. */
+  protected readonly staleGroups = computed(() => {
+    const standing = this.list.hasValue() ? this.list.value().correlations : null;
+    return standing && standing.runId === null ? changedWords(standing) : null;
+  });
   /** Edits not carried over that a characteristic of this binning shows. */
   protected readonly notCarriedHere = computed(() => (this.all() ?? []).reduce((sum, { notCarried }) => sum + notCarried, 0));
   protected readonly carriedWords = computed(() => {
@@ -194,7 +202,8 @@ export class CharacteristicsPage {
       .pipe(
         filter(
           (run) =>
-            ['binning.class', 'binning.complete', 'binning.correlate', 'binning.reclass'].includes(run.kind) && run.entityId === this.binningId(),
+            ['binning.class', 'binning.complete', 'binning.correlate', 'binning.reclass'].includes(run.kind) &&
+            run.entityId === this.binningId(),
         ),
         takeUntilDestroyed(),
       )

@@ -20,7 +20,7 @@ import { RunProgress } from '../../../ui/run-progress';
 import { SortInAddress } from '../../../ui/sort-in-address';
 import { Binnings, binningOf, correlationsOf } from '../data/binnings';
 import { CorrelationFigure } from '../ui/correlation-figure';
-import { type Standing, correlationFinding, inflationLimit, readCorrelations } from '../ui/correlation-reading';
+import { type Standing, changedWords, correlationFinding, inflationLimit, readCorrelations } from '../ui/correlation-reading';
 
 /** Which characteristics say the same: correlations of WOE, groups at a threshold that stands in the address, variance inflation. */
 @Component({
@@ -70,9 +70,9 @@ import { type Standing, correlationFinding, inflationLimit, readCorrelations } f
             </ts-empty>
           }
         } @else {
-          @if (correlations.changed.length > 0 && !run()) {
+          @if (changed(); as changed) {
             <ts-decision>
-              <b>{{ changedWords() }}</b> since these figures were calculated.
+              <b>{{ changed }}</b> since these figures were calculated.
               @if (mayCalculate()) {
                 <button tsDecide matButton="outlined" type="button" [disabled]="starting.busy()" (click)="calculate()">
                   Calculate anew
@@ -156,10 +156,10 @@ export class CorrelationsPage {
     const flagged = this.reading()?.pairs.filter((pair) => pair.flagged).length ?? 0;
     return `${plural(flagged, 'pair')} at ${fixed(this.limit(), 2)} or more. Filled: they rise together; hollow: one falls as the other rises.`;
   });
-  protected readonly changedWords = computed(() => {
-    const changed = this.correlations()?.changed ?? [];
-    const names = changed.slice(0, 3).join(', ');
-    return `${names}${changed.length > 3 ? ` and ${changed.length - 3} more` : ''} ${changed.length === 1 ? 'has' : 'have'} changed`;
+  /** Nothing while they are calculated anew. */
+  protected readonly changed = computed(() => {
+    const correlations = this.correlations();
+    return correlations && !this.run() ? changedWords(correlations) : null;
   });
   protected readonly rowsWords = computed(() => plural(this.correlations()?.rows ?? 0, 'row'));
   protected readonly when = computed(() => {

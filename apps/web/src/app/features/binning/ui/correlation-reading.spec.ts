@@ -1,4 +1,4 @@
-import { correlationFinding, readCorrelations } from './correlation-reading';
+import { changedWords, correlationFinding, readCorrelations } from './correlation-reading';
 
 const one = (column: string, informationValue: number, inflation: number | null = 1) => ({
   id: column,
@@ -45,5 +45,16 @@ describe('correlations', () => {
     const { pairs, standings } = readCorrelations({ characteristics: characteristics.slice(0, 2), matrix: [[null, null], [null, 1]] }, 0.7); // prettier-ignore
     expect(pairs).toEqual([]);
     expect(standings[0].nearest).toBeNull();
+  });
+
+  it('name what they no longer speak of, three at most, and nothing before they were calculated', () => {
+    const standing = { calculatedAt: '2026-03-01T10:00:00.000Z', runId: null };
+    expect(changedWords({ ...standing, changed: [] })).toBeNull();
+    expect(changedWords({ ...standing, changed: ['age'] })).toBe('age has changed');
+    expect(changedWords({ ...standing, changed: ['age', 'balance', 'home'] })).toBe('age, balance, home have changed');
+    expect(changedWords({ ...standing, changed: ['age', 'balance', 'home', 'region', 'utilisation'] })).toBe(
+      'age, balance, home and 2 more have changed',
+    );
+    expect(changedWords({ calculatedAt: null, runId: null, changed: ['age'] })).toBeNull();
   });
 });

@@ -1,4 +1,4 @@
-import type { Correlations } from '@tallystone/contracts/binnings/correlations';
+import type { CorrelationStanding, Correlations } from '@tallystone/contracts/binnings/correlations';
 import { clustersAt, hierarchy } from '@tallystone/numeric/diagnostics/clusters';
 import { count, fixed, plural } from '../../../ui/numbers';
 
@@ -110,4 +110,11 @@ export function correlationFinding({ groups, pairs, standings }: CorrelationRead
   }
   const within = groups.reduce((sum, { length }) => sum + length, 0);
   return `${plural(within, 'characteristic')} of ${standings.length} fall into ${plural(groups.length, 'group')} that ${groups.length === 1 ? 'says' : 'say'} nearly the same; ${vif}.`;
+}
+
+/** Which characteristics correlations no longer speak of: "age, home, region and 2 more have changed"; null where all is as it was. */
+export function changedWords({ calculatedAt, changed }: CorrelationStanding): string | null {
+  if (calculatedAt === null || changed.length === 0) return null;
+  const names = changed.slice(0, 3).join(', ');
+  return `${names}${changed.length > 3 ? ` and ${changed.length - 3} more` : ''} ${changed.length === 1 ? 'has' : 'have'} changed`;
 }
