@@ -162,6 +162,11 @@ describe('warnings', () => {
       'high-information-value',
     ]);
     expect(found[1].bins).toEqual([2, 4]);
+    expect(found[1].message).toBe(
+      '40 and over has no bad; missing has no bad: for WOE, 0.5 is added to goods and bads of each bin.',
+    );
+    const more = benchWarnings(readBench(turned, { ...bins, edges: [20, 40] }, { amount: 2, when: 'zero-cell' }), limits);
+    expect(more[1].message).toContain('for WOE, 2 is added');
   });
 
   it('says when everything lies in one bin', () => {

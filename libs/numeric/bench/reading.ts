@@ -61,6 +61,8 @@ export interface BenchReading {
   readonly trend: ObservedTrend;
   /** CSI of hold-out and out-of-time against development. */
   readonly stability: BenchStability;
+  /** What every WOE and IV here was calculated with; `smoothed` of a partition says whether it came to that. */
+  readonly smoothing: Smoothing;
 }
 
 /**
@@ -110,6 +112,7 @@ export function readBench(fine: FineClasses, bins: Bins, smoothing: Smoothing = 
             development.figures.slice(0, coarse).map((bin) => bin.rows),
           ),
     stability: benchStability(fine, bins),
+    smoothing,
   };
 }
 

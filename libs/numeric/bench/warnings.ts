@@ -67,7 +67,11 @@ export function benchWarnings(reading: BenchReading, limits: SizeLimits, drift: 
     const names = zero.map(
       (bin) => `${reading.bins[bin].label} has no ${reading.bins[bin].figures.development?.goods === 0 ? 'good' : 'bad'}`,
     );
-    warnings.push({ code: 'zero-cell', message: `${names.join('; ')}: its WOE is smoothed.`, bins: zero });
+    warnings.push({
+      code: 'zero-cell',
+      message: `${names.join('; ')}: for WOE, ${reading.smoothing.amount} is added to goods and bads of each bin.`,
+      bins: zero,
+    });
   }
   if (reading.trend === 'one-peak' || reading.trend === 'one-valley' || reading.trend === 'mixed') {
     const shape =

@@ -45,7 +45,7 @@ import { Tombstone } from '../../../ui/tombstone';
 import { currentBins } from '../bench/history';
 import { Bench } from '../data/bench';
 import { Binnings, binningOf, characteristicsOf } from '../data/binnings';
-import { benchFinding, trendWords } from '../ui/bench-finding';
+import { benchFinding, smoothingWords, trendWords } from '../ui/bench-finding';
 import { BenchMonths } from './bench-months';
 import { BinsFigure } from '../ui/bins-figure';
 import { EditList, type KnownEdit } from '../ui/edit-list';
@@ -178,6 +178,11 @@ export class BenchPage {
   protected readonly shownPartition = computed<PartitionName>(() => {
     const asked = this.partition();
     return asked === 'holdOut' || (asked === 'outOfTime' && this.bench.fine()?.outOfTime) ? asked : 'development';
+  });
+  /** Of WOE in the table under the figure. */
+  protected readonly smoothing = computed(() => {
+    const reading = this.bench.reading();
+    return reading && smoothingWords(reading, this.shownPartition());
   });
   protected readonly shownMeasure = computed<Measure>(() => asMeasure(this.measure()) ?? 'woe');
   protected readonly askedSpan = computed<Span | null>(() => asSpan(this.period()));

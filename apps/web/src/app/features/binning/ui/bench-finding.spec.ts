@@ -1,6 +1,6 @@
 import { benchWarnings, readBench, type NumericBins } from '@tallystone/numeric/bench';
 import { home, utilisation } from '../testing/characteristics';
-import { benchFinding, trendWords } from './bench-finding';
+import { benchFinding, smoothingWords, trendWords } from './bench-finding';
 
 const say = (fine: typeof utilisation.fine, bins: typeof utilisation.current): string => {
   const reading = readBench(fine, bins);
@@ -30,5 +30,26 @@ describe('the sentence over a characteristic', () => {
     expect(say(home.fine, home.current)).toMatch(
       /^Bad rate runs from 6\.7.% \(owner\) to 40\.0.% \(other\) and holds in hold-out/,
     );
+  });
+});
+
+describe('what WOE is calculated with', () => {
+  const { fine, current } = utilisation;
+  // No bad among missing values of hold-out.
+  const none = { ...fine.holdOut, goods: [...fine.holdOut.goods.slice(0, -1), 30], bads: [...fine.holdOut.bads.slice(0, -1), 0] };
+
+  it('is said of each partition: what is added where a bin has no bad, and that nothing is elsewhere', () => {
+    const reading = readBench({ ...fine, holdOut: none }, current);
+    expect(smoothingWords(reading, 'holdOut')).toBe(
+      'For WOE, 0.5 is added to goods and bads of each bin, as one has no good or no bad.',
+    );
+    expect(smoothingWords(reading, 'development')).toBe(
+      'WOE is of the counts as they are; 0.5 is added to goods and bads of each bin only where one has no good or no bad.',
+    );
+  });
+
+  it('is the amount that the figures were calculated with', () => {
+    const reading = readBench({ ...fine, holdOut: none }, current, { amount: 0.25, when: 'zero-cell' });
+    expect(smoothingWords(reading, 'holdOut')).toContain('0.25 is added');
   });
 });

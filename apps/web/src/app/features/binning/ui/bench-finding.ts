@@ -1,5 +1,5 @@
-import type { BenchReading, BenchWarning, FineClasses } from '@tallystone/numeric/bench';
-import { share } from '../../../ui/numbers';
+import type { BenchReading, BenchWarning, FineClasses, PartitionName } from '@tallystone/numeric/bench';
+import { share, written } from '../../../ui/numbers';
 
 /** The one sentence over a characteristic: how risk runs, whether it holds elsewhere, what is small. */
 export function benchFinding(fine: FineClasses, reading: BenchReading, warnings: readonly BenchWarning[]): string {
@@ -42,6 +42,14 @@ function rangeSentence({ bins }: BenchReading): string {
   const [low, high] = [groups[0], groups[groups.length - 1]];
   const name = (label: string): string => (label.length > 30 ? `${label.slice(0, 28)}…` : label);
   return `Bad rate runs from ${share(low.figures.development?.badRate)} (${name(low.label)}) to ${share(high.figures.development?.badRate)} (${name(high.label)})`;
+}
+
+/** What WOE of a partition is calculated with: whether anything is added to its counts, and how much. */
+export function smoothingWords({ smoothing, totals }: BenchReading, partition: PartitionName): string {
+  const added = `${written(smoothing.amount)} is added to goods and bads of each bin`;
+  return totals[partition]?.smoothed
+    ? `For WOE, ${added}, as one has no good or no bad.`
+    : `WOE is of the counts as they are; ${added} only where one has no good or no bad.`;
 }
 
 /** "numeric, risk rises" beside the title. */
