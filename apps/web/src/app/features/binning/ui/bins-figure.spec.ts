@@ -126,6 +126,41 @@ describe('the binning figure', () => {
     expect(ticks()).toEqual([]);
   });
 
+  it('shows the labels of all values whole, at both ends of the axis', async () => {
+    // Nobody has a special code or no value, so that the axis goes on to the edge of the drawing, where its last tick stands.
+    const values = Array.from({ length: 15 }, (_, place) => (place + 1) * 1000);
+    const counts = (many: number): number[] => [...Array<number>(values.length + 1).fill(many), 0];
+    const amounts: typeof utilisation = {
+      ...utilisation,
+      current: { kind: 'numeric', edges: [4000, 9000], special: [], missing: 'own' },
+      fine: {
+        ...utilisation.fine,
+        edges: values,
+        range: [0, 16000],
+        special: [],
+        development: { rows: counts(100), goods: counts(80), bads: counts(20) },
+        holdOut: { rows: counts(50), goods: counts(40), bads: counts(10) },
+      },
+    };
+    const { root } = await setUp(amounts);
+    const width = Number(root.querySelector('svg[viewBox^="0 0"]')?.getAttribute('width'));
+    const ticks = [...root.querySelectorAll('.ts-axis:not(.ts-axis-open) .tick')].map((tick) => {
+      const text = tick.querySelector('text');
+      const x = Number(/translate\(([\d.]+)/.exec(tick.getAttribute('transform') ?? '')?.[1]);
+      // Centred under its tick but for what it is moved by; a digit is 6.6 pixels wide.
+      const [centre, half] = [x + Number(text?.getAttribute('dx')), ((text?.textContent ?? '').length * 6.6) / 2];
+      return { label: text?.textContent, x, from: centre - half, to: centre + half };
+    });
+    expect(ticks[0].label).toBe('0');
+    expect(ticks.at(-1)?.label).toBe('16\u202F000');
+    // It would not fit where it stands.
+    expect(ticks.at(-1)!.x + 15).toBeGreaterThan(width);
+    for (const { from, to } of ticks) {
+      expect(from).toBeGreaterThanOrEqual(0);
+      expect(to).toBeLessThanOrEqual(width);
+    }
+  });
+
   it('has rows, goods and bads of each bin under it', async () => {
     const { root } = await setUp();
     const row = (name: string) => {

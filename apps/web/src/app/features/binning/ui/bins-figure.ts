@@ -13,12 +13,10 @@ import {
   viewChild,
 } from '@angular/core';
 import {
-  edgeBeside,
   groupCategories,
   mergeNumeric,
   moveCut,
   rounderCut,
-  snapped,
   type BenchReading,
   type Bins,
   type EditOf,
@@ -28,13 +26,15 @@ import {
 } from '@tallystone/numeric/bench';
 import { axisBottom, axisLeft } from 'd3-axis';
 import { AxisDirective } from '../../../ui/axis';
-import type { Column } from '../../../ui/column';
 import { ElementWidth } from '../../../ui/element-width';
 import { FigureFrame, FigurePoint } from '../../../ui/figure-frame';
-import { binWords, count, share, woe, written } from '../../../ui/numbers';
-import { partitionName, partitionPath } from '../../../ui/partition-mark';
+import { count, share, woe, written } from '../../../ui/numbers';
+import { partitionPath } from '../../../ui/partition-mark';
 import { BinsTable } from './bins-table';
+import { cutMoves, edgeLetGo, reachOf } from './cut-moves';
+import { figuresTable } from './figures-table';
 import { type AxisMode, type DrawnCut, categoryOrder, ladderScale, layOut, notchedLine, shownLabels, sizes } from './geometry';
+import { ladderOf } from './ladder';
 
 interface Dragged {
   readonly pointer: number;
@@ -55,16 +55,8 @@ interface DraggedCategory {
   readonly over: number | 'new' | null;
 }
 
-/** A cut that is let go this near to a round number goes there, unless Alt is held; this near to where it began, it stays. */
-const snapReach = 10; // px
 /** A pointer that has moved less than this has pressed, not dragged. */
 const dragFrom = 4; // px
-
-interface TableRow {
-  readonly bin: number;
-  readonly label: string;
-  readonly partition: PartitionName;
-}
 
 /**
  * The figure of one characteristic: goods above and bads below one axis, cuts as notches in it, a ladder of log odds and the table, aligned
@@ -173,65 +165,9 @@ export class BinsFigure {
     });
   });
 
-  protected readonly ladder = computed(() => {
-    const scale = this.scale();
-    const [bottom, top] = scale.domain();
-    const clamp = (value: number): number => scale(Math.min(top, Math.max(bottom, value)));
-    return this.geometry().columns.flatMap(({ bin, label, x0, x1 }) => {
-      if (bin === null) return [];
-      const { development, holdOut, outOfTime } = this.reading().bins[bin].figures;
-      const inset = Math.min(5, (x1 - x0) / 6);
-      const mark = (figures: typeof holdOut, part: number, name: PartitionName) =>
-        figures?.logOdds == null
-          ? null
-          : {
-              x: x0 + (x1 - x0) * part,
-              y: scale(figures.logOdds),
-              label: `${partitionName(name)}, ${label}: log odds ${woe(figures.logOdds)}, bad rate ${share(figures.badRate)}`,
-            };
-      return [
-        {
-          label,
-          x: x0 + inset,
-          width: Math.max(2, x1 - x0 - 2 * inset),
-          bar:
-            development?.logOdds == null || development.logOddsLower === null || development.logOddsUpper === null
-              ? null
-              : {
-                  y: scale(development.logOdds),
-                  high: clamp(development.logOddsUpper),
-                  low: clamp(development.logOddsLower),
-                  label: `Development, ${label}: log odds ${woe(development.logOdds)}, bad rate ${share(development.badRate)}, ${count(development.rows)} rows`,
-                },
-          holdOut: mark(holdOut, outOfTime ? 0.36 : 0.5, 'holdOut'),
-          outOfTime: mark(outOfTime, 0.64, 'outOfTime'),
-        },
-      ];
-    });
-  });
-
-  /** The same numbers for those who read, by bin and partition. */
-  protected readonly table = computed(() => {
-    const reading = this.reading();
-    const names: PartitionName[] = ['development', 'holdOut', ...(this.fine().outOfTime ? (['outOfTime'] as const) : [])];
-    const rows: TableRow[] = reading.bins.flatMap(({ label }, bin) => names.map((partition) => ({ bin, label, partition })));
-    const figures = ({ bin, partition }: TableRow) => reading.bins[bin].figures[partition];
-    const columns: Column<TableRow>[] = [
-      { key: 'bin', label: 'Bin', value: (row) => row.label, format: (row) => binWords(row.label) },
-      { key: 'partition', label: 'Partition', value: (row) => partitionName(row.partition) },
-      { key: 'rows', label: 'Rows', kind: 'count', value: (row) => figures(row)?.rows },
-      { key: 'goods', label: 'Goods', kind: 'number', decimals: 0, value: (row) => figures(row)?.goods },
-      { key: 'bads', label: 'Bads', kind: 'number', decimals: 0, value: (row) => figures(row)?.bads },
-      { key: 'share', label: 'Share', kind: 'share', value: (row) => figures(row)?.share },
-      { key: 'rate', label: 'Bad rate', kind: 'share', value: (row) => figures(row)?.badRate },
-      { key: 'lower', label: 'From', unit: '95 % interval', kind: 'share', value: (row) => figures(row)?.lower },
-      { key: 'upper', label: 'To', unit: '95 % interval', kind: 'share', value: (row) => figures(row)?.upper },
-      { key: 'odds', label: 'Log odds', kind: 'woe', value: (row) => figures(row)?.logOdds },
-      { key: 'woe', label: 'WOE', kind: 'woe', value: (row) => figures(row)?.woe },
-      { key: 'part', label: 'IV part', kind: 'number', decimals: 3, value: (row) => figures(row)?.part },
-    ];
-    return { columns, rows };
-  });
+  protected readonly ladder = computed(() => ladderOf(this.geometry().columns, this.reading(), this.scale()));
+  /** The same numbers for those who read. */
+  protected readonly table = computed(() => figuresTable(this.fine(), this.reading()));
 
   protected cutLabel({ cut }: DrawnCut): string {
     return `Cut ${cut + 1} of ${this.geometry().cuts.length}`;
@@ -244,50 +180,14 @@ export class BinsFigure {
   }
 
   protected reach(cut: number): { min: number; max: number } {
-    const { edges } = this.bins() as NumericBins;
-    const within = this.fine().edges.filter(
-      (edge) => edge > (edges[cut - 1] ?? -Infinity) && edge < (edges[cut + 1] ?? Infinity),
-    );
-    return { min: within[0] ?? edges[cut], max: within[within.length - 1] ?? edges[cut] };
+    return reachOf(this.fine(), this.bins() as NumericBins, cut);
   }
 
   protected keyOnCut(event: KeyboardEvent, cut: number): void {
     const bins = this.bins();
     if (!this.editable() || bins.kind !== 'numeric' || event.ctrlKey || event.metaKey || event.altKey) return;
     const fine = this.fine();
-    let edge: number | null = null;
-    const along = (steps: number): number | null => {
-      let at: NumericBins = bins;
-      let found: number | null = null;
-      for (let step = 0; step < Math.abs(steps); step++) {
-        const next = edgeBeside(fine, at, cut, steps > 0 ? 1 : -1);
-        if (next === null) break;
-        found = next;
-        at = { ...at, edges: at.edges.map((value, index) => (index === cut ? next : value)) };
-      }
-      return found;
-    };
     switch (event.key) {
-      case 'ArrowRight':
-      case 'ArrowUp':
-        edge = along(1);
-        break;
-      case 'ArrowLeft':
-      case 'ArrowDown':
-        edge = along(-1);
-        break;
-      case 'PageUp':
-        edge = along(5);
-        break;
-      case 'PageDown':
-        edge = along(-5);
-        break;
-      case 'Home':
-        edge = this.reach(cut).min;
-        break;
-      case 'End':
-        edge = this.reach(cut).max;
-        break;
       case 'Delete':
       case 'Backspace':
         this.emit(mergeNumeric(fine, bins, cut));
@@ -309,10 +209,11 @@ export class BinsFigure {
       case 'Escape':
         this.letGo();
         return;
-      default:
-        return;
     }
+    const moves = cutMoves[event.key];
+    if (!moves) return;
     event.preventDefault();
+    const edge = moves(fine, bins, cut);
     if (edge !== null) this.emit(moveCut(fine, bins, cut, edge));
   }
 
@@ -447,21 +348,8 @@ export class BinsFigure {
     if (edit && edit.kind !== 'cut moved') this.chosen.set(new Set());
   }
 
-  /**
-   * The fine edge that a cut which is let go here comes to: the one it began at where it is within a few pixels of it, else a rounder one within a
-   * few pixels, else the nearest. With Alt the nearest. The cut goes as far as the pointer went, wherever in its grip it was taken.
-   */
   private nearest({ cut, bins, fromX }: Dragged, event: PointerEvent): number | null {
-    const [low, high] = [bins.edges[cut - 1] ?? -Infinity, bins.edges[cut + 1] ?? Infinity];
-    const { edges } = this.geometry();
-    const began = edges.find(({ edge }) => edge === bins.edges[cut]);
-    if (!began) return null;
-    const x = began.x + this.inDrawing(event.clientX - fromX);
-    if (!event.altKey && Math.abs(x - began.x) <= snapReach) return began.edge;
-    const places = edges
-      .filter(({ edge }) => edge > low && edge < high)
-      .map((place) => ({ value: place.edge, away: Math.abs(place.x - x) }));
-    return snapped(places, event.altKey ? 0 : snapReach)?.value ?? null;
+    return edgeLetGo(this.geometry().edges, bins, cut, this.inDrawing(event.clientX - fromX), event.altKey);
   }
 
   private overAt(x: number): number | 'new' | null {

@@ -13,8 +13,9 @@ export const sizes = {
   /** From the bads to the axis of values. */
   gap: 14,
   axis: 34,
-  /** Ticks of values under the cuts. */
+  /** Ticks of values under the cuts, and the word before them. */
   values: 26,
+  valueWord: 44,
   ladder: 150,
   ladderGap: 22,
   /** A special code, missing or unseen categories. */
