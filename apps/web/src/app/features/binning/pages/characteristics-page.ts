@@ -9,7 +9,7 @@ import { Router, RouterLink } from '@angular/router';
 import { Subject, debounceTime, filter, firstValueFrom } from 'rxjs';
 import { CurrentModel } from '../../../core/current-model';
 import { columnLabels } from '../../../core/column-labels';
-import { Runs } from '../../../core/events/runs';
+import { Runs, hasEnded } from '../../../core/events/runs';
 import { newIdempotencyKey } from '../../../core/http/etag';
 import { mostReclassedAtOnce } from '@tallystone/contracts/binnings/limits';
 import { Task } from '../../../core/task';
@@ -87,6 +87,10 @@ export class CharacteristicsPage {
   /** The run that classes many characteristics anew, while there is one; one that failed stays until the page is left. */
   private readonly reclassingId = signal<string | null>(null);
   protected readonly reclassing = this.runs.run(() => this.reclassingId());
+  protected readonly classingAnew = computed(() => {
+    const run = this.reclassing();
+    return run !== null && !hasEnded(run);
+  });
   protected readonly all = computed(() => (this.list.hasValue() ? this.list.value().characteristics : null));
   protected readonly rows = computed(() => filtered(this.all() ?? [], this.part(), this.search() ?? '', this.labels()));
   protected readonly finding = computed(() => (this.list.hasValue() ? this.list.value().finding : null));
