@@ -48,6 +48,22 @@ describe('Ask', () => {
     expect(await answer).toEqual({ reason: 'Last look before freezing' });
   });
 
+  it('takes no reason of its list for given before one is chosen', async () => {
+    const { dialog, answer } = await put({
+      title: 'Leave it out?',
+      accept: 'Leave out',
+      reason: { label: 'Why', choices: ['Tells nobody apart', 'Not known at application'], text: true, required: true },
+    });
+    const accept = await dialog.getHarness(MatButtonHarness.with({ text: 'Leave out' }));
+    await accept.click();
+    expect(await loader.getAllHarnesses(MatDialogHarness)).toHaveLength(1);
+    expect(await dialog.getText()).toContain('Say why; it is kept in the record.');
+    await (await dialog.getHarness(MatRadioButtonHarness.with({ label: 'Not known at application' }))).check();
+    expect(await dialog.getText()).not.toContain('Say why');
+    await accept.click();
+    expect(await answer).toEqual({ reason: 'Not known at application' });
+  });
+
   it('offers a short list and opens the text for another reason', async () => {
     const { dialog, answer } = await put({
       title: 'Keep this cut?',

@@ -1,4 +1,4 @@
-import { ChangeDetectionStrategy, Component, inject } from '@angular/core';
+import { ChangeDetectionStrategy, Component, inject, signal } from '@angular/core';
 import { FormControl, ReactiveFormsModule, Validators } from '@angular/forms';
 import { MatButtonModule } from '@angular/material/button';
 import { MAT_DIALOG_DATA, MatDialogModule, MatDialogRef } from '@angular/material/dialog';
@@ -49,6 +49,9 @@ const other = 'Another reason';
                 <mat-radio-button [value]="entry">{{ entry }}</mat-radio-button>
               }
             </mat-radio-group>
+            @if (unanswered() && choice.value === '') {
+              <p class="refused" role="alert">Say why; it is kept in the record.</p>
+            }
           }
           @if (writes()) {
             <mat-form-field appearance="outline" subscriptSizing="dynamic">
@@ -76,6 +79,9 @@ const other = 'Another reason';
     mat-radio-group {
       display: grid;
     }
+    .refused {
+      color: var(--mat-sys-error);
+    }
     .grave {
       --mat-button-filled-container-color: var(--ts-bad);
       --mat-button-filled-label-text-color: var(--ts-paper);
@@ -86,7 +92,9 @@ export class AskDialog {
   protected readonly question = inject<Question>(MAT_DIALOG_DATA);
   private readonly reference = inject<MatDialogRef<AskDialog, Answer>>(MatDialogRef);
   protected readonly choices: readonly string[] = this.choicesOf(this.question);
-  protected readonly choice = new FormControl(this.choices[0] ?? '', { nonNullable: true });
+  /** None to begin with: what goes into the record as a person's reason is what they chose. */
+  protected readonly choice = new FormControl('', { nonNullable: true });
+  protected readonly unanswered = signal(false);
   protected readonly text = new FormControl('', {
     nonNullable: true,
     validators: this.question.reason?.required === false ? [] : [Validators.required, Validators.pattern(/\S/)],
@@ -100,6 +108,10 @@ export class AskDialog {
 
   protected accept(event: Event): void {
     event.preventDefault();
+    if (this.choices.length > 0 && this.choice.value === '' && this.question.reason?.required !== false) {
+      this.unanswered.set(true);
+      return;
+    }
     if (this.writes() && this.text.invalid) {
       this.text.markAsTouched();
       return;
