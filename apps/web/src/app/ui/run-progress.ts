@@ -125,7 +125,8 @@ export class RunProgress {
     const run = this.run();
     if (!run) return '';
     if (run.state === 'queued') return 'waiting for a worker';
-    const parts = [run.phase, run.share === null ? null : share(run.share, 0)];
+    // A phase that is the whole of the run stands beside it already.
+    const parts = [run.phase === this.title() ? null : run.phase, run.share === null ? null : share(run.share, 0)];
     const left = this.runs.secondsLeft(run);
     if (left !== null) parts.push(`about ${duration(left)} left`);
     return parts.filter(Boolean).join(', ');
