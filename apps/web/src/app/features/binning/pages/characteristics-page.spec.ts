@@ -24,6 +24,24 @@ const known = listed('months_known', { informationValue: 0.2, group: 1, position
 const region = listed('region', { informationValue: 0.01, position: 3, included: false, leftOutReason: 'Tells nobody apart' });
 const list = listOf([age, utilisation, known, region]);
 const address = '/models/m1/binning/b1';
+const run: Run = {
+  id: 'r1',
+  kind: 'binning.reclass',
+  state: 'running',
+  phase: 'Classing',
+  share: 0.5,
+  attempt: 1,
+  modelId: 'm1',
+  entity: 'binning',
+  entityId: 'b1',
+  startedBy: 'Marian',
+  createdAt: '2026-11-03T13:00:00Z',
+  startedAt: '2026-11-03T13:00:01Z',
+  endedAt: null,
+  result: null,
+  problem: null,
+  abilities: ['cancel'],
+};
 const reference = ({ id, revision }: CharacteristicSummary) => ({ id, revision });
 
 describe('CharacteristicsPage', () => {
@@ -261,7 +279,6 @@ describe('CharacteristicsPage', () => {
       expect((request.request.body as { characteristics: object[] }).characteristics).toEqual(many.map(reference));
       request.flush({ runId: 'r1' });
       const runs = TestBed.inject(Runs);
-      const run = { id: 'r1', kind: 'binning.reclass', entityId: 'b1', state: 'running', phase: 'Classing', share: 0.5, endedAt: null, abilities: [], attempt: 1 } as unknown as Run; // prettier-ignore
       runs.follow(run);
       await settled();
       expect(shown()).toContain('Classing anew');
@@ -274,6 +291,35 @@ describe('CharacteristicsPage', () => {
       await settled();
       expect(shown()).toContain('Classed anew.');
       expect(page().querySelector('ts-run-progress')).toBeNull();
+    });
+  });
+
+  describe('a run that was not started on this page', () => {
+    const bar = (): Element | null => page().querySelector('[role=progressbar][aria-label="Classing anew"]');
+    const hear = async (change: Partial<Run>): Promise<void> => {
+      TestBed.inject(Runs).follow({ ...run, ...change });
+      await settled();
+    };
+
+    it('is shown where it classes characteristics of this binning anew', async () => {
+      await open();
+      await hear({ id: 'r0', entityId: 'b2' });
+      await hear({ id: 'r3', kind: 'binning.correlate' });
+      expect(bar()).toBeNull();
+      await hear({});
+      expect(bar()?.getAttribute('aria-valuenow')).toBe('50');
+      await hear({ state: 'succeeded', endedAt: '2026-11-03T13:00:09Z' });
+      expect(bar()).toBeNull();
+    });
+
+    it('has the list read again once it has ended', async () => {
+      await open();
+      await hear({});
+      server.expectNone('/api/binnings/b1/characteristics');
+      await hear({ state: 'cancelled', endedAt: '2026-11-03T13:00:09Z' });
+      server.expectOne('/api/binnings/b1/characteristics').flush(listOf([age], { finding: 'Read again.' }));
+      await settled();
+      expect(shown()).toContain('Read again.');
     });
   });
 

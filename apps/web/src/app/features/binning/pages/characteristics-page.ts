@@ -84,10 +84,14 @@ export class CharacteristicsPage {
     () => this.current.can('develop') && this.binning.hasValue() && this.binning.value().erased === null,
   );
   protected readonly run = this.runs.run(() => (this.binning.hasValue() ? this.binning.value().runId : null));
-  /** The run that classes many characteristics anew, while there is one; one that failed stays until the page is left. */
+  private readonly reclassings = this.runs.forModel(() => this.modelId(), 'binning.reclass');
+  /** The run that was started on this page and has not ended well, which stays until the page is left. */
   private readonly reclassingId = signal<string | null>(null);
-  protected readonly reclassing = this.runs.run(() => this.reclassingId());
-  protected readonly classingAnew = computed(() => {
+  /** The run that classes many characteristics anew, while there is one, wherever it was started. */
+  protected readonly reclassing = computed(
+    () => this.reclassings().find((run) => run.entityId === this.binningId() && (!hasEnded(run) || run.id === this.reclassingId())) ?? null,
+  );
+  protected readonly underWay = computed(() => {
     const run = this.reclassing();
     return run !== null && !hasEnded(run);
   });
@@ -212,7 +216,7 @@ export class CharacteristicsPage {
         takeUntilDestroyed(),
       )
       .subscribe((run) => {
-        if (run.kind === 'binning.reclass' && run.state !== 'failed') this.reclassingId.set(null);
+        if (run.id === this.reclassingId() && run.state === 'succeeded') this.reclassingId.set(null);
         this.reload();
       });
   }
