@@ -255,6 +255,7 @@ export class BenchPage {
       { keys: 'a', does: 'Add a cut at a value', where: 'Binning', run: () => this.toValue(null) },
       { keys: 'm', does: 'Merge the selected bin with the next', where: 'Binning', run: () => this.merge(0) },
       { keys: 's', does: 'Split the selected bin at its best cut', where: 'Binning', run: () => this.split() },
+      { keys: 'r', does: 'Move the selected cut to a round number', where: 'Binning', run: () => this.round() },
       { keys: ']', does: 'Next characteristic', where: 'Binning', run: () => this.goTo(this.neighbours().next?.id) },
       { keys: '[', does: 'Previous characteristic', where: 'Binning', run: () => this.goTo(this.neighbours().previous?.id) },
     );
