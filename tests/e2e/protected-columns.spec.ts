@@ -1,32 +1,14 @@
-import type { Run } from '@tallystone/contracts/runs/schema';
-import type { Draft, DraftContent } from '@tallystone/contracts/samples/definition';
-import type { SampleList } from '@tallystone/contracts/samples/schema';
 import type { Page } from '@playwright/test';
 import { applicantsWithRisk } from '../support/binned';
-import { bringIn, enterEmptyModel, post } from '../support/demo-places';
+import { defineSample, enterEmptyModel } from '../support/demo-places';
 import { expectAccessible, expectNoOverflow, narrow, present, wide } from '../support/page-inspection';
 import { expect, test } from '../support/rooms';
 
 /** A protected characteristic in the browser: what its modeller can do about it, and what compliance can. */
 
-const read = async <T>({ request }: Page, address: string): Promise<T> => (await (await request.get(address)).json()) as T;
-
-async function ended(page: Page, run: Run): Promise<Run> {
-  let last = run;
-  await expect.poll(async () => (last = await read<Run>(page, `/api/runs/${run.id}`)).state, 'the run').toBe('succeeded');
-  return last;
-}
-
 /** A confirmed definition in which gender is a protected characteristic, made in the name of the modeller on whose page this is. */
 async function define(page: Page, modelId: string): Promise<string> {
-  await bringIn(page, modelId, 'applicants.csv', applicantsWithRisk(600));
-  const { samples } = await read<SampleList>(page, `/api/models/${modelId}/samples`);
-  const path = `/api/models/${modelId}/samples/${samples[0].id}`;
-  const { choices } = await post<{ choices: object }>(page, `${path}/preview`, {});
-  await ended(page, await post<Run>(page, `${path}/readings`, choices));
-  const answer = await page.request.get(`${path}/draft`);
-  const { content } = (await answer.json()) as Draft;
-  const changed: DraftContent = {
+  const { sampleId } = await defineSample(page, modelId, applicantsWithRisk(600), (content) => ({
     ...content,
     columns: content.columns.map((column) => {
       if (column.column === 'gender') return { ...column, role: 'characteristic', protected: true, citation: 'Section 1, as the modeller reads it' };
@@ -34,13 +16,8 @@ async function define(page: Page, modelId: string): Promise<string> {
       return ['age', 'home'].includes(column.column) ? { ...column, role: 'characteristic', reason: 'as an example' } : column;
     }),
     partition: { by: 'seed', seed: 7, holdOutShare: 0.3, outOfTime: null },
-  };
-  const token = (await page.context().cookies()).find(({ name }) => name === 'XSRF-TOKEN')?.value ?? '';
-  const saved = await page.request.put(`${path}/draft`, { data: changed, headers: { 'X-XSRF-TOKEN': token, 'If-Match': answer.headers()['etag'] } });
-  const { revision, problems } = (await saved.json()) as Draft;
-  expect(problems).toEqual([]);
-  await ended(page, await post<Run>(page, `${path}/definitions`, { revision }));
-  return `/models/${modelId}/sample/${samples[0].id}`;
+  }));
+  return `/models/${modelId}/sample/${sampleId}`;
 }
 
 test('a protected column is proposed by its modeller, permitted and withdrawn by compliance', async ({ roomOf }) => {

@@ -4,6 +4,8 @@ import { join } from 'node:path';
 import type { BinningList, CharacteristicList } from '@tallystone/contracts/binnings/schema';
 import type { FitList } from '@tallystone/contracts/fits/schema';
 import type { Model, ModelList } from '@tallystone/contracts/models/schema';
+import type { Run } from '@tallystone/contracts/runs/schema';
+import type { Draft, DraftContent } from '@tallystone/contracts/samples/definition';
 import type { SampleList } from '@tallystone/contracts/samples/schema';
 import type { VersionList } from '@tallystone/contracts/versions/schema';
 import { type Page, expect } from '@playwright/test';
@@ -110,4 +112,46 @@ export async function bringIn(page: Page, modelId: string, fileName: string, tex
     data: bytes,
   });
   if (!sent.ok()) throw new Error(`${sent.status()} ${fileName}: ${await sent.text()}`);
+}
+
+/** Waits for a run of the person on whose page this is. Throws where it ends otherwise than well. */
+export async function succeeded(page: Page, run: Pick<Run, 'id'>): Promise<Run> {
+  const ended: Run[] = [];
+  await expect
+    .poll(async () => {
+      ended[0] = (await (await page.request.get(`/api/runs/${run.id}`)).json()) as Run;
+      return ended[0].endedAt;
+    }, 'the end of a run')
+    .not.toBeNull();
+  if (ended[0].state !== 'succeeded') throw new Error(`${ended[0].kind} ${ended[0].state}: ${ended[0].problem?.message}`);
+  return ended[0];
+}
+
+/**
+ * Brings a file into a model that has none, reads it as is proposed and confirms what a change makes of the draft, all in the name of whoever is signed
+ * in on the page.
+ */
+export async function defineSample(
+  page: Page,
+  modelId: string,
+  text: string,
+  change: (content: DraftContent) => DraftContent,
+): Promise<{ sampleId: string; definitionId: string }> {
+  await bringIn(page, modelId, 'applicants.csv', text);
+  const samples = (await (await page.request.get(`/api/models/${modelId}/samples`)).json()) as SampleList;
+  const [{ id: sampleId }] = samples.samples;
+  const path = `/api/models/${modelId}/samples/${sampleId}`;
+  const { choices } = await post<{ choices: object }>(page, `${path}/preview`, {});
+  await succeeded(page, await post<Run>(page, `${path}/readings`, choices));
+  const answer = await page.request.get(`${path}/draft`);
+  const { content } = (await answer.json()) as Draft;
+  const token = (await page.context().cookies()).find(({ name }) => name === 'XSRF-TOKEN')?.value ?? '';
+  const saved = await page.request.put(`${path}/draft`, {
+    data: change(content),
+    headers: { 'X-XSRF-TOKEN': token, 'If-Match': answer.headers()['etag'] },
+  });
+  const { revision, problems } = (await saved.json()) as Draft;
+  expect(problems).toEqual([]);
+  const { result } = await succeeded(page, await post<Run>(page, `${path}/definitions`, { revision }));
+  return { sampleId, definitionId: (result as { definitionId: string }).definitionId };
 }
