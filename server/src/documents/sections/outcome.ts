@@ -1,3 +1,4 @@
+import { readingNames } from '@tallystone/contracts/fits/outcome-readings';
 import type { Refit } from '@tallystone/contracts/fits/outcome-refits';
 import type { SensitivityCase } from '@tallystone/contracts/samples/definition';
 import { isByRule, listed, outcomeColumns, outcomeWords } from '@tallystone/contracts/specification/outcome';
@@ -97,8 +98,6 @@ function writeByRule(writer: Writer): void {
   );
 }
 
-const readingName = { 'as they are': 'left out, as defined', 'as good': 'all good', 'as bad': 'all bad' } as const;
-
 /** How far the indeterminates can move the bad rate. */
 function writeReadings(writer: Writer): void {
   const { outcomeCounts } = writer.input;
@@ -133,7 +132,7 @@ function writeReadings(writer: Writer): void {
       ],
       rows: readings.map(({ indeterminates, development, holdOut }) => ({
         cells: [
-          readingName[indeterminates],
+          readingNames[indeterminates],
           ...[development, holdOut].flatMap(({ goods, bads, badRate }) => [whole(goods), whole(bads), percent(badRate)]),
         ],
       })),
@@ -175,7 +174,7 @@ function writeRefits(writer: Writer): void {
       ],
       rows: cases.map((entry) => ({
         cells: [
-          readingName[entry.indeterminates] + (entry.converged ? '' : ' (not converged)'),
+          readingNames[entry.indeterminates] + (entry.converged ? '' : ' (not converged)'),
           whole(entry.goods),
           whole(entry.bads),
           whole(entry.kept),

@@ -262,6 +262,14 @@ export class ColumnsPage {
       sortable: true,
     },
     { key: 'type', label: 'Type', value: (row) => row.defined?.kind ?? row.profile.kind, sortable: true },
+    // Before the figures: a table too wide for its place hides what stands last, and this is what asks for a look.
+    {
+      key: 'flags',
+      label: 'Flags',
+      value: (row) => flagsOf(row.profile),
+      width: 30,
+      sortable: true,
+    },
     { key: 'distinct', label: 'Distinct', kind: 'count', value: (row) => row.profile.distinct, sortable: true },
     {
       key: 'missing',
@@ -273,13 +281,6 @@ export class ColumnsPage {
     { key: 'special', label: 'Special', kind: 'count', value: (row) => specialRows(row), sortable: true },
     { key: 'range', label: 'Range', value: (row) => rangeOf(row.profile) },
     { key: 'frequent', label: 'Most frequent', value: (row) => mostFrequentOf(row.profile), width: 24 },
-    {
-      key: 'flags',
-      label: 'Flags',
-      value: (row) => flagsOf(row.profile),
-      width: 30,
-      sortable: true,
-    },
   ]);
 
   constructor() {

@@ -1,7 +1,8 @@
 import { ChangeDetectionStrategy, Component, computed, input } from '@angular/core';
+import { readingNames } from '@tallystone/contracts/fits/outcome-readings';
 import type { OutcomeRefits } from '@tallystone/contracts/fits/outcome-refits';
 import { fixed, metric, plural } from '../../../ui/numbers';
-import { readingWords, refitsFinding } from './refits-view';
+import { refitsFinding } from './refits-view';
 
 /** The fit again with the indeterminates as good and as bad, at a penalty that a rule points to; at others, where to find it. */
 @Component({
@@ -99,7 +100,7 @@ export class Refits {
     return at && refitsFinding(at.cases);
   });
   protected readonly applicants = computed(() => plural(this.refits().rows, 'applicant'));
-  protected readonly words = readingWords;
+  protected readonly words = readingNames;
   protected readonly gini = metric;
   protected readonly whole = (value: number): string => fixed(value, 0);
 }

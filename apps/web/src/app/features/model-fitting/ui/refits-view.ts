@@ -1,12 +1,6 @@
 import type { Refit } from '@tallystone/contracts/fits/outcome-refits';
 import { fixed } from '../../../ui/numbers';
 
-export const readingWords: Readonly<Record<Refit['indeterminates'], string>> = {
-  'as they are': 'left out, as defined',
-  'as good': 'all good',
-  'as bad': 'all bad',
-};
-
 /** How far another reading of the indeterminates moves the Gini. Nothing where a case is not there. */
 export function refitsFinding(cases: readonly Refit[]): string {
   const moved = (wanted: Refit['indeterminates']): string => {
