@@ -172,8 +172,6 @@ describe('the binning figure', () => {
     expect(row('Rows')).toEqual(['200', '200', '600', '80', '60']);
     expect(row('Goods')).toEqual(['189', '180', '465', '60', '50']);
     expect(row('Bads')).toEqual(['11', '20', '135', '20', '10']);
-    const caption = root.querySelector('ts-bins-table caption')?.textContent?.replace(/\s+/g, ' ');
-    expect(caption).toContain('Bins, Development. WOE is of the counts as they are; 0.5 is added to goods and bads');
   });
 
   it('drags a cut: shows where it would lie and edits once when it is let go', async () => {

@@ -2,7 +2,6 @@ import { ChangeDetectionStrategy, Component, computed, input, model, output } fr
 import type { BenchReading, PartitionName } from '@tallystone/numeric/bench';
 import { DASH, fixed, share, woe } from '../../../ui/numbers';
 import { partitionName } from '../../../ui/partition-mark';
-import { smoothingWords } from './bench-finding';
 import { type DrawnBin, sizes } from './geometry';
 
 interface TableRow {
@@ -21,9 +20,6 @@ interface TableRow {
         Bins,
         {{
           partitionLabel()
-        }}.
-        {{
-          smoothing()
         }}
       </caption>
       <colgroup>
@@ -150,7 +146,6 @@ export class BinsTable {
   readonly pressed = output<{ bin: number; event: KeyboardEvent }>();
 
   protected readonly partitionLabel = computed(() => partitionName(this.partition()));
-  protected readonly smoothing = computed(() => smoothingWords(this.reading(), this.partition()));
 
   /** Columns with the gaps between them (null), so that each stands under its bin. */
   protected readonly spaced = computed<readonly (DrawnBin | null)[]>(() => {

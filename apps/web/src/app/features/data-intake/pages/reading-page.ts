@@ -83,11 +83,11 @@ import { SampleSteps } from '../ui/sample-steps';
             }
           </div>
         }
-        <ts-preview-table [preview]="view" />
         <ts-problems [error]="found.error()" />
         @if (doubtful(); as those) {
           <ts-doubtful-lines [found]="those.found" [looked]="those.looked" />
         }
+        <ts-preview-table [preview]="view" />
       } @else if (looking.busy()) {
         <p class="ts-second" role="status">Looking at the file</p>
       }
