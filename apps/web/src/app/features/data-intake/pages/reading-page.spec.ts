@@ -84,10 +84,10 @@ describe('ReadingPage', () => {
     expect((await open({ missing: 'Inf' })).missing).toEqual(['', 'NA', 'Inf']);
   });
 
-  it('shows doubtful lines below the first rows, and lets nobody read on', async () => {
+  it('shows doubtful lines before the first rows, and lets nobody read on', async () => {
     expect(await open()).toEqual(reading);
     const headings = [...page().querySelectorAll('h3')].map(({ textContent }) => textContent);
-    expect(headings).toEqual(['First rows', 'Doubtful lines']);
+    expect(headings).toEqual(['Doubtful lines', 'First rows']);
     expect(page().querySelector('[aria-label="Doubtful lines"]')?.textContent).toContain('1 field where the header has 2');
     const read = [...page().querySelectorAll('button')].find(({ textContent }) => textContent.includes('Read the file again'));
     expect(read?.disabled).toBe(true);
