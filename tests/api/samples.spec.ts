@@ -1,4 +1,5 @@
 import { inflateRawSync } from 'node:zlib';
+import type { CharacteristicBalance, ComparedPartition, DraftBalance } from '@tallystone/contracts/samples/balance';
 import type { DraftContent } from '@tallystone/contracts/samples/definition';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { prepare } from '../../server/src/replay/prepare';
@@ -62,6 +63,8 @@ describe('a sample from its file to its definition', () => {
   let sampleId: string;
   let etag: string;
   let content: DraftContent;
+  let comparedBefore: ComparedPartition[];
+  let balanceOfDraft: CharacteristicBalance[];
 
   it('is read, typed and profiled, with every suggestion to be confirmed', async () => {
     const sample = await modeller.sample(modelId, applicants());
@@ -228,6 +231,53 @@ describe('a sample from its file to its definition', () => {
     expect(holdOut.bads).toBe(Math.round(0.3 * (development.bads + holdOut.bads)));
   });
 
+  it('compares the partitions of the draft before anything is confirmed, and keeps every one that was compared', async () => {
+    const read = async (who: Visitor) => (await who.get(`${path}/draft/balance`).expect(200)).body as DraftBalance;
+    const draft = async () => (await modeller.get(`${path}/draft`).expect(200)).body as { revision: number; content: DraftContent };
+    const compare = async (key: string, revision: number) => {
+      const { body } = await modeller.post(`${path}/draft/balance`).set('Idempotency-Key', key).send({ revision }).expect(202);
+      const again = await modeller.post(`${path}/draft/balance`).set('Idempotency-Key', key).send({ revision }).expect(202);
+      expect(again.body.id).toBe(body.id);
+      return modeller.ended(body.id);
+    };
+    const resplit = async (seed: number) => {
+      const { content: now } = await draft();
+      if (now.partition.by !== 'seed') throw new Error('The sample is split by a seed');
+      etag = (await modeller.put(`${path}/draft`).set('If-Match', etag).send({ ...now, partition: { ...now.partition, seed } }).expect(200)).headers.etag;
+    };
+    expect(await read(modeller)).toEqual({ last: null, compared: [] });
+    const first = await draft();
+    const { partition } = first.content;
+    if (partition.by !== 'seed') throw new Error('The sample is split by a seed');
+    await modeller.post(`${path}/draft/balance`).send({ revision: first.revision - 1 }).expect(412);
+    await validator.post(`${path}/draft/balance`).send({ revision: first.revision }).expect(403);
+    await other.get(`${path}/draft/balance`).expect(404);
+    expect(await compare('compare-the-first', first.revision)).toMatchObject({ state: 'succeeded', result: { revision: first.revision } });
+    const found = await read(validator);
+    expect(found.last).toMatchObject({ revision: first.revision, current: true });
+    expect(found.last?.characteristics?.map(({ column }) => column)).toEqual(['age', 'income', 'home', 'channel', 'bureau_score']);
+    expect(JSON.stringify(found)).not.toMatch(/good|bad/i);
+    // Another seed: what was compared is not of this draft any more, and stays among what was compared.
+    await resplit(partition.seed + 1);
+    expect((await read(modeller)).last).toMatchObject({ current: false });
+    await compare('compare-the-second', (await draft()).revision);
+    await resplit(partition.seed);
+    await compare('compare-the-third', (await draft()).revision);
+    const { last, compared } = await read(modeller);
+    expect(last).toMatchObject({ current: true, characteristics: found.last?.characteristics });
+    expect(compared).toMatchObject([
+      { partition: expect.stringMatching(`^seed ${partition.seed + 1}, 30 % hold-out, out-of-time by applied_on from `), comparedBy: 'marian' },
+      { partition: expect.stringMatching(`^seed ${partition.seed}, `) },
+    ]);
+    // One seed draws other people than another.
+    expect(compared[0].largest).not.toBe(compared[1].largest);
+    const { body: record } = await validator.get(`/api/record?modelId=${modelId}&limit=200`).expect(200);
+    const events = (record.entries as { action: string; after: unknown }[]).filter(({ action }) => action === 'sample.compared');
+    expect(events).toHaveLength(3);
+    comparedBefore = compared;
+    balanceOfDraft = last?.characteristics ?? [];
+  });
+
   it('confirms it as an immutable definition that the chain repeats exactly', async () => {
     const { body: draft } = await modeller.get(`${path}/draft`).expect(200);
     const key = 'confirm-once-only';
@@ -253,6 +303,10 @@ describe('a sample from its file to its definition', () => {
     // The inputs are compared partition by partition, for the validator too, and no outcome is told.
     const { body: balance } = await validator.get(`${path}/definitions/${definitionId}/balance`).expect(200);
     expect(balance.definitionId).toBe(definitionId);
+    // The same as the draft was told, with all that was compared before.
+    expect(balance.characteristics).toEqual(balanceOfDraft);
+    expect(balance.compared).toEqual(comparedBefore);
+    expect((await modeller.get(`${path}/draft/balance`).expect(200)).body.compared).toEqual([]);
     expect(balance.characteristics.map(({ column }: { column: string }) => column)).toEqual(['age', 'income', 'home', 'channel', 'bureau_score']);
     const { development, holdOut } = stored.counts;
     for (const { holdOut: reading } of balance.characteristics) {

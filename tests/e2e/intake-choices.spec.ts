@@ -345,8 +345,14 @@ test('read again with another choice, the draft stays, and what cannot stay is t
 test('a flag of the quality report is accepted with its reason, and stays answered', async ({ roomOf }) => {
   const { page } = await roomOf('modeller');
   await page.goto(`${sample}/definition`);
+  // The balance can be seen before anything is confirmed, and that it was looked at stays with the definition.
+  await page.getByRole('button', { name: 'Compare the partitions' }).click();
+  const gives = page.getByRole('region', { name: 'What it gives' });
+  await expect(gives.getByRole('table', { name: 'Stability index by characteristic, against development' })).toBeVisible();
+  await expect(gives.getByRole('listitem').filter({ hasText: /by the values of \S+: (largest index \d\.\d{3}|nothing to compare with); / })).toHaveCount(1);
   await page.getByRole('button', { name: 'Confirm the definition' }).click();
   await expect(page.getByRole('region', { name: 'Confirmed definition' })).toBeVisible();
+  await expect(page.getByText(/^One partition was compared before the definition was confirmed: by the values of /)).toBeVisible();
   await page.getByRole('link', { name: 'Quality', exact: true }).click();
   const flags = page.getByRole('region', { name: 'Flags and answers' });
   const flag = flags.getByRole('listitem').filter({ hasText: 'Nearly constant' });

@@ -1,7 +1,7 @@
 import { defineEndpoint } from '../endpoint';
 import { ofDefinition } from '../out-of-time/schema';
 import { Run } from '../runs/schema';
-import { PartitionBalance } from './balance';
+import { CompareDraft, DraftBalance, PartitionBalance } from './balance';
 import { ColumnList } from './columns';
 import { ConfirmDraft, ConfirmReading, Definition, DefinitionList, Draft, DraftCheck, DraftContent } from './definition';
 import { ColumnLabels, Dictionary, DictionaryContent, DictionaryFile } from './dictionary';
@@ -128,6 +128,22 @@ export const checkDraft = defineEndpoint({
   summary: 'What the saved draft would give: the waterfall, or all that stands in the way',
   params: SampleParams,
   response: DraftCheck,
+});
+export const readDraftBalance = defineEndpoint({
+  method: 'GET',
+  path: `${ofSample}/draft/balance`,
+  summary: 'How each characteristic is spread in the partitions of the draft, as it was last compared: inputs only',
+  params: SampleParams,
+  response: DraftBalance,
+});
+export const compareDraft = defineEndpoint({
+  method: 'POST',
+  path: `${ofSample}/draft/balance`,
+  summary: 'Compare the partitions of the saved draft before it is confirmed, as a run (Idempotency-Key)',
+  params: SampleParams,
+  body: CompareDraft,
+  response: Run,
+  status: 202,
 });
 export const confirmDraft = defineEndpoint({
   method: 'POST',

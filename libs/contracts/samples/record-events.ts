@@ -11,6 +11,9 @@ export const sampleEvents = [
     after: z.strictObject({ rows: z.int(), columns: z.int(), reading: ReadingChoices, sha256: z.string() }),
   }),
   recordEvent('sample.discarded', 'sample', { before: File }),
+  recordEvent('sample.compared', 'sample', {
+    after: z.strictObject({ revision: z.int(), partition: z.string(), largest: z.number().nullable() }),
+  }),
   recordEvent('sample.defined', 'sample', {
     after: z.strictObject({
       definitionId: z.uuid(),

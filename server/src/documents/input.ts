@@ -1,7 +1,7 @@
 import { z } from 'zod';
 import { ComparedMetrics } from '@tallystone/contracts/comparison/schema';
 import { resultSchema } from '@tallystone/contracts/result/schema';
-import { CharacteristicBalance } from '@tallystone/contracts/samples/balance';
+import { CharacteristicBalance, ComparedPartition } from '@tallystone/contracts/samples/balance';
 import { OutcomeRefits, Refit } from '@tallystone/contracts/fits/outcome-refits';
 import { RuleCounts, SensitivityCase } from '@tallystone/contracts/samples/definition';
 import { QualityGroup } from '@tallystone/contracts/samples/quality';
@@ -201,7 +201,12 @@ export const RaisedFlag = z.strictObject({
 });
 
 /** Development against the other partitions, characteristic by characteristic. */
-export const Balance = z.strictObject({ evidence: cited, characteristics: z.array(CharacteristicBalance) });
+export const Balance = z.strictObject({
+  evidence: cited,
+  characteristics: z.array(CharacteristicBalance),
+  /** The partitions that were compared before the definition was confirmed; null where that was not kept. */
+  compared: z.array(ComparedPartition).nullable(),
+});
 
 /** What a column with the role of a segment splits. Of a protected one nothing is told. */
 export const Segment = z.strictObject({
@@ -497,6 +502,7 @@ export type DocumentInput = z.infer<typeof parts>;
 export type EvidenceItem = z.infer<typeof EvidenceItem>;
 export type AuthorText = z.infer<typeof AuthorText>;
 export type Signature = z.infer<typeof Signature>;
+export type Balance = z.infer<typeof Balance>;
 export type Segment = z.infer<typeof Segment>;
 export type AcceptsOnly = z.infer<typeof AcceptsOnly>;
 export type Stability = z.infer<typeof Stability>;

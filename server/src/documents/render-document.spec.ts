@@ -224,6 +224,12 @@ describe('the document of a complete version', () => {
     expect(words).toMatch(/0\.009 0\.006 [^.]*below 0\.10,? more than/);
   });
 
+  it('names every partition that was compared before one was confirmed', () => {
+    expect(words).toContain(
+      '2 partitions were compared before the definition was confirmed: seed 3, 30 % hold-out, out-of-time by applied_on from 2025-01-01 (largest index 0.310); seed 7,',
+    );
+  });
+
   it('shows what segments split, reads no small one, and tells nothing of a protected one', () => {
     expect(words).toContain('The bad rate runs from 8.2 % (Harbour) to 12.5 % (Marshes).');
     expect(words).toContain('Harbour 14 000 7 800 700 8.2 % 7.7 % to 8.8 % 2 550 214 0.781');

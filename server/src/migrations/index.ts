@@ -14,6 +14,7 @@ import { dictionaries } from './0131-dictionaries';
 import { erasures } from './0132-erasures';
 import { permissions } from './0133-permissions';
 import { doubtfulLines } from './0134-doubtful-lines';
+import { draftComparisons } from './0135-draft-comparisons';
 import { outOfTime } from './0200-out-of-time';
 import { binnings } from './0201-binnings';
 import { correlations } from './0202-correlations';
@@ -29,4 +30,4 @@ import type { Migration } from './migration';
  * Every migration in order. A static list, because a glob finds nothing in the bundle. Numbers leave room by entity: 00xx the base,
  * 01xx models and samples, 02xx binnings, 03xx fits, 04xx scorecards and versions, 05xx documents; the order of this list decides.
  */
-export const migrations: readonly Migration[] = [people, sessions, record, runs, queue, mail, models, samples, outOfTime, binnings, correlations, carriedEdits, binningMonths, fits, scorecards, versions, runParts, sampleBalances, acceptsOnly, qualityReports, dictionaries, erasures, permissions, notHere, doubtfulLines];
+export const migrations: readonly Migration[] = [people, sessions, record, runs, queue, mail, models, samples, outOfTime, binnings, correlations, carriedEdits, binningMonths, fits, scorecards, versions, runParts, sampleBalances, acceptsOnly, qualityReports, dictionaries, erasures, permissions, notHere, doubtfulLines, draftComparisons];

@@ -56,6 +56,8 @@ export const sampleRows: readonly AccessRow[] = [
   readsModel(`GET ${ofSample}/draft`),
   developsModel(`PUT ${ofSample}/draft`),
   developsModel(`POST ${ofSample}/draft/check`),
+  readsModel(`GET ${ofSample}/draft/balance`),
+  developsModel(`POST ${ofSample}/draft/balance`),
   developsModel(`POST ${ofSample}/definitions`),
   readsModel(`GET ${ofSample}/definitions`),
   readsModel(`GET ${ofSample}/definitions/:definitionId`),

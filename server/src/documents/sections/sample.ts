@@ -1,8 +1,14 @@
 import { fewestInSegment } from '@tallystone/contracts/comparison/schema';
 import type { BalanceReading } from '@tallystone/contracts/samples/balance';
-import { balanceFinding, byIndex, largerReading, readingWords } from '@tallystone/contracts/samples/balance-reading';
+import {
+  balanceFinding,
+  byIndex,
+  comparedWords,
+  largerReading,
+  readingWords,
+} from '@tallystone/contracts/samples/balance-reading';
 import { rateInterval } from '@tallystone/numeric/metrics/intervals';
-import type { Segment } from '../input';
+import type { Balance, Segment } from '../input';
 import { area, fixed, percent, rate, whole } from '../number-texts';
 import type { Writer } from '../page/writer';
 import { writeCorrection, writeDeclined } from './inference';
@@ -116,6 +122,13 @@ function writeBalance(writer: Writer): void {
   writer.note(
     'Inputs only: no outcome enters. Rows with a good or bad outcome; tenths of development, each special code and missing in a class of its own. Usual reading of the index: below 0.10, to 0.25, above (common practice). “Chance”: when nothing has changed the index is (1/N + 1/M) times a chi-square with B − 1 degrees of freedom, N and M the rows and B the classes, and stays below this value in 95 of 100 draws (Yurdakul 2018).',
   );
+  writeCompared(writer, balance);
+}
+
+/** Who compares many seeds and keeps one has chosen by what he saw: all of them stand here. */
+function writeCompared(writer: Writer, { compared, evidence }: Balance): void {
+  if (compared === null) return;
+  writer.text(`${comparedWords(compared)} ${writer.cite(evidence)}.`);
 }
 
 function writeSegments(writer: Writer): void {

@@ -311,6 +311,20 @@ export function inventedInput(count = 12): DocumentInput {
         });
         return { column, holdOut: reading(4286, 0.002 + 0.001 * place), outOfTime: reading(2746, place === 2 ? 0.31 : 0.01) };
       }),
+      compared: [
+        {
+          partition: 'seed 3, 30 % hold-out, out-of-time by applied_on from 2025-01-01',
+          largest: 0.31,
+          comparedAt: '2026-11-03T09:00:00.000Z',
+          comparedBy: 'Modeller at Saltmarsh Mutual',
+        },
+        {
+          partition: 'seed 7, 30 % hold-out, out-of-time by applied_on from 2025-01-01',
+          largest: 0.31,
+          comparedAt: '2026-11-03T09:20:00.000Z',
+          comparedBy: 'Modeller at Saltmarsh Mutual',
+        },
+      ],
     },
     segments: {
       evidence: 'E-1',

@@ -1,3 +1,4 @@
+import { DraftComparisonResult } from '@tallystone/contracts/samples/balance';
 import { ConfirmationResult } from '@tallystone/contracts/samples/definition';
 import { QualityResult } from '@tallystone/contracts/samples/quality';
 import { ReadingChoices, ReadingResult } from '@tallystone/contracts/samples/reading';
@@ -11,6 +12,15 @@ export const readSampleJob = defineJob({
   readsRows: true,
   payload: z.strictObject({ sampleId: z.uuid(), choices: ReadingChoices }),
   result: ReadingResult,
+});
+
+/** Compares the inputs of a draft between its partitions, before anything is confirmed. */
+export const compareDraftJob = defineJob({
+  kind: 'sample.compare',
+  queue: 'long',
+  readsRows: true,
+  payload: z.strictObject({ sampleId: z.uuid(), revision: z.int() }),
+  result: DraftComparisonResult,
 });
 
 /** Carries out a draft on all rows and keeps it as an immutable definition. */

@@ -4,7 +4,22 @@ import { classBinning, completeBinning, correlateBinning, reclassBinning } from 
 import { makeDocument } from './documents';
 import { fitPenaltyPath } from './fits';
 import { verifyRecord } from './record';
-import { confirmSample, readSample, reportQuality } from './samples';
+import { compareDraft, confirmSample, readSample, reportQuality } from './samples';
 
 /** Everything a worker can do. An entity adds its handlers here. */
-export const handlers: readonly Handler[] = [verifyRecord, classBinning, correlateBinning, completeBinning, reclassBinning, readSample, confirmSample, reportQuality, fitPenaltyPath, freezeVersion, replicateVersion, studyVersionStability, makeDocument];
+export const handlers: readonly Handler[] = [
+  verifyRecord,
+  classBinning,
+  correlateBinning,
+  completeBinning,
+  reclassBinning,
+  readSample,
+  compareDraft,
+  confirmSample,
+  reportQuality,
+  fitPenaltyPath,
+  freezeVersion,
+  replicateVersion,
+  studyVersionStability,
+  makeDocument,
+];

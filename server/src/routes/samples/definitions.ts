@@ -1,11 +1,14 @@
 import * as endpoints from '@tallystone/contracts/samples/endpoints';
+import { compareDraftJob } from '../../jobs/definitions/samples';
 import { canDefineSample, canReadSample } from '../../policies/samples';
 import { notFound } from '../../problems/problem';
 import { describeRun } from '../../services/runs/find';
 import { readBalance } from '../../services/samples/balance';
+import { readDraftBalance } from '../../services/samples/compare-draft';
 import { confirmDraft } from '../../services/samples/confirm-draft';
 import { listDefinitions, readDefinition } from '../../services/samples/definitions';
 import { checkDraft, findDraft, presentDraft, saveDraft } from '../../services/samples/draft';
+import { startOnDraft } from '../../services/samples/draft-run';
 import { findSample } from '../../services/samples/find-sample';
 import { type Route, defineRoute } from '../http/route';
 import { presentRun } from '../runs/present';
@@ -46,6 +49,29 @@ export function definitionRoutes(): Route[] {
         findDraft(context, await findSample(context.sequelize, params.modelId, params.sampleId, tx), tx),
       authorise: ({ person, subject }) => canDefineSample(person, subject.sample),
       act: ({ context, subject }) => checkDraft(context, subject),
+    }),
+    defineRoute(endpoints.readDraftBalance, {
+      access: 'signed-in',
+      find: async ({ context, params }) =>
+        findDraft(context, await findSample(context.sequelize, params.modelId, params.sampleId)),
+      authorise: ({ person, subject }) => canReadSample(person, subject.sample),
+      act: ({ context, subject }) => readDraftBalance(context, subject),
+    }),
+    defineRoute(endpoints.compareDraft, {
+      access: 'signed-in',
+      idempotent: true,
+      find: async ({ context, params, tx }) =>
+        findDraft(context, await findSample(context.sequelize, params.modelId, params.sampleId, tx, true), tx, true),
+      authorise: ({ person, subject }) => canDefineSample(person, subject.sample),
+      async act({ context, person, subject, body, tx, requestId }) {
+        const run = await startOnDraft(context, tx, compareDraftJob, {
+          person,
+          draft: subject,
+          revision: body.revision,
+          requestId,
+        });
+        return presentRun(await describeRun(context.sequelize, run.id, person.id, tx), person);
+      },
     }),
     defineRoute(endpoints.confirmDraft, {
       access: 'signed-in',

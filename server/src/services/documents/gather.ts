@@ -1,7 +1,7 @@
 import type { FitPath, FitSettings } from '@tallystone/contracts/fits/schema';
 import type { Opening } from '@tallystone/contracts/out-of-time/schema';
 import type { Protection } from '@tallystone/contracts/permissions/schema';
-import type { CharacteristicBalance } from '@tallystone/contracts/samples/balance';
+import type { CharacteristicBalance, ComparedPartition } from '@tallystone/contracts/samples/balance';
 import { noLongerReplicable } from '@tallystone/contracts/samples/erased-words';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
 import type { OutcomeRefits } from '@tallystone/contracts/fits/outcome-refits';
@@ -48,6 +48,8 @@ interface SampleEvidence {
   labels?: ColumnLabels['labels'];
   /** Absent in versions frozen before they were kept with it, null where they were not made. */
   balance?: CharacteristicBalance[] | null;
+  /** Absent in versions frozen before partitions could be compared in a draft. */
+  compared?: ComparedPartition[];
   /** Absent in versions frozen before permissions were kept with them. */
   protection?: Protection;
   segments?: SegmentGroups[] | null;
@@ -196,7 +198,7 @@ export async function gatherDocument(context: Context, versionId: string, person
     },
     protection: sample && protectionOf(sample),
     qualityFlags: sample && flagsOf(sample),
-    balance: sample?.content.balance ? { evidence: sample.number, characteristics: sample.content.balance } : null,
+    balance: sample?.content.balance ? { evidence: sample.number, characteristics: sample.content.balance, compared: sample.content.compared ?? null } : null,
     segments: sample && segmentsOf(sample, performance),
     priorCorrection: fit && correctionOf(fit),
     inferenceReason: fit && inferenceReasonOf(fit),

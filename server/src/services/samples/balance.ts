@@ -7,6 +7,7 @@ import type { Prepared } from '../../replay/types';
 import { openSample } from '../../storage/columnStore';
 import { runInThread } from '../../threads/run-in-thread';
 import { sharedBytes } from '../../threads/shared-bytes';
+import { comparedBefore } from './compared-partitions';
 import type { FoundSample } from './find-sample';
 import { inTurn } from './in-turn';
 
@@ -52,11 +53,11 @@ export async function storeBalance(
 
 /** Null where this sample has no such definition. */
 export async function readBalance(sequelize: Sequelize, sample: FoundSample, definitionId: string): Promise<PartitionBalance | null> {
-  const [found] = await rows<PartitionBalance>(
+  const [found] = await rows<Omit<PartitionBalance, 'compared'>>(
     sequelize,
     `SELECT d.id AS "definitionId", b.characteristics FROM sample_definitions d LEFT JOIN sample_balances b ON b.definition_id = d.id
       WHERE d.sample_id = $1 AND d.id = $2`,
     [sample.id, definitionId],
   );
-  return found ?? null;
+  return found ? { ...found, compared: await comparedBefore(sequelize, definitionId) } : null;
 }

@@ -4,20 +4,18 @@ import type { Transaction } from 'sequelize';
 import type { Context } from '../../context';
 import { rows } from '../../database/sql';
 import { confirmSampleJob } from '../../jobs/definitions/samples';
-import { startRun } from '../../jobs/start-run';
 import type { Actor } from '../../models/person';
 import type { Run } from '../../models/run';
-import { Sample, SampleDefinition } from '../../models/sample';
-import { Problem, conflict, invalid } from '../../problems/problem';
+import { SampleDefinition } from '../../models/sample';
+import { Problem } from '../../problems/problem';
 import { storeAssignment } from '../../storage/assignmentStore';
 import { unflaggedBy } from '../permissions/unflagged';
 import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
 import { balanceOf, storeBalance } from './balance';
-import { carryOut } from './carry-out';
 import { profilesOf } from './columns-of';
-import { type FoundDraft, findDraft, presentDraft } from './draft';
-import { findSample } from './find-sample';
+import type { FoundDraft } from './draft';
+import { carryOutDraft, startOnDraft } from './draft-run';
 import { hideIdentifiers, identifiersInClear, neededInClear, storeHidden } from './hide-identifiers';
 import { startReport } from './quality/start-report';
 
@@ -35,23 +33,9 @@ export async function confirmDraft(
   requestId: string,
 ): Promise<Run> {
   const { sample } = draft;
-  if (draft.revision !== revision)
-    throw new Problem(412, 'stale', 'The draft was saved since you read it. Look at it as it is now, then confirm.');
-  const { problems } = await presentDraft(context, draft, tx);
   const profiles = sample.readingId === null ? [] : await profilesOf(context.sequelize, sample.readingId, tx);
-  const clear = await neededInClear(context.sequelize, sample.id, identifiersInClear(draft.content.columns, profiles), tx);
-  if (problems.length + clear.length > 0) throw invalid([...problems, ...clear]);
-  if (sample.busy) throw conflict('busy', 'Something runs on this sample already. Wait for it or cancel it.');
-  return startRun(context, tx, confirmSampleJob, {
-    payload: { sampleId: sample.id, revision },
-    person,
-    modelId: sample.modelId,
-    entity: 'sample',
-    entityId: sample.id,
-    rowsOf: { sampleId: sample.id },
-    singleton: sample.id,
-    requestId,
-  });
+  const further = await neededInClear(context.sequelize, sample.id, identifiersInClear(draft.content.columns, profiles), tx);
+  return startOnDraft(context, tx, confirmSampleJob, { person, draft, revision, requestId, further });
 }
 
 /** What confirming needs of the run that does it. */
@@ -69,21 +53,8 @@ export interface ConfirmingRun {
  */
 export async function confirmDefinition(payload: { sampleId: string; revision: number }, run: ConfirmingRun): Promise<void> {
   const { context } = run;
-  const row = await Sample.findByPk(payload.sampleId, { rejectOnEmpty: true });
-  const sample = await findSample(context.sequelize, row.modelId, row.id);
-  const draft = await findDraft(context, sample);
-  if (!sample || !draft || draft.revision !== payload.revision) {
-    throw new Problem(412, 'stale', 'The draft was saved since it was to be confirmed. Look at it as it is now, then confirm.');
-  }
   run.progress('counting', 0.1);
-  const { problems, content, answer } = await carryOut(context, sample, draft.content, run.signal);
-  if (problems) {
-    const detail =
-      problems.length === 1
-        ? problems[0].message
-        : `${problems.length} things stand in the way; the first: ${problems[0].message}`;
-    throw new Problem(422, 'not-confirmed', detail, { problems });
-  }
+  const { sample, content, answer } = await carryOutDraft(context, payload, run.signal);
   const balance = await balanceOf(context, sample, content, answer.prepared, {
     signal: run.signal,
     onColumn: (done, count) => run.progress('comparing the partitions', 0.4 + (0.4 * done) / count),

@@ -1,6 +1,7 @@
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../database/sql';
 import { protectionOf } from '../permissions/protection';
+import { comparedBefore } from '../samples/compared-partitions';
 import { entriesOf } from '../samples/dictionary/find';
 import { reportOf, segmentsOf } from '../samples/quality/read-report';
 import { codeVersionFacts } from './code-version';
@@ -64,6 +65,7 @@ export async function versionEvidence(
         report: await reportOf(sequelize, definition.id, tx),
         dictionary: await entriesOf(sequelize, definition.id, tx),
         balance: balance.at(0)?.characteristics ?? null,
+        compared: await comparedBefore(sequelize, definition.id, tx),
         segments: await segmentsOf(sequelize, definition.id, tx),
         protection: await protectionOf(sequelize, { id: definition.id, columns: definition.content.columns }, tx),
       },

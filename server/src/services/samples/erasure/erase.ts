@@ -47,6 +47,8 @@ export async function eraseSample(
   await rows(sequelize, 'SELECT erase_sample_rows($1)', [sample.id], tx);
   // Places in a file that is gone.
   await rows(sequelize, 'UPDATE samples SET doubtful = NULL WHERE id = $1 RETURNING id', [sample.id], tx);
+  // Labels of categories that a few rows may hold, of what was never confirmed; that the partitions were compared stays.
+  await rows(sequelize, 'UPDATE sample_draft_comparisons SET characteristics = NULL WHERE sample_id = $1 RETURNING id', [sample.id], tx);
   const [{ versions }] = await rows<{ versions: number }>(
     sequelize,
     'SELECT count(*)::int AS versions FROM versions v JOIN sample_definitions d ON d.id = v.definition_id WHERE d.sample_id = $1',

@@ -1,7 +1,7 @@
 import { HttpClient, type HttpResourceRef, httpResource } from '@angular/common/http';
 import { Injectable, inject } from '@angular/core';
 import type { NewPermissionAct, ProtectedColumns } from '@tallystone/contracts/permissions/schema';
-import type { PartitionBalance } from '@tallystone/contracts/samples/balance';
+import type { DraftBalance, PartitionBalance } from '@tallystone/contracts/samples/balance';
 import type { ColumnList, ColumnProfile, ColumnRole } from '@tallystone/contracts/samples/columns';
 import type {
   Definition,
@@ -90,6 +90,15 @@ export function balanceOf(
   });
 }
 
+/** How each characteristic of the draft is spread by partition, as it was last compared; nothing is asked while it is not wanted. */
+export function draftBalanceOf(
+  modelId: () => string,
+  sampleId: () => string,
+  wanted: () => boolean,
+): HttpResourceRef<DraftBalance | undefined> {
+  return httpResource<DraftBalance>(() => (wanted() ? `${of(modelId(), sampleId())}/draft/balance` : undefined));
+}
+
 /** What of a confirmed definition is protected; nothing is asked while there is no definition. */
 export function protectedOf(definitionId: () => string | null): HttpResourceRef<ProtectedColumns | undefined> {
   return httpResource<ProtectedColumns>(() => {
@@ -149,6 +158,13 @@ export class Samples {
 
   check(modelId: string, sampleId: string): Promise<DraftCheck> {
     return firstValueFrom(this.http.post<DraftCheck>(`${of(modelId, sampleId)}/draft/check`, null));
+  }
+
+  /** Starts the comparison of the partitions that the saved draft gives. */
+  compare(modelId: string, sampleId: string, revision: number, key: string): Promise<Run> {
+    return firstValueFrom(
+      this.http.post<Run>(`${of(modelId, sampleId)}/draft/balance`, { revision }, { headers: idempotent(key) }),
+    );
   }
 
   confirm(modelId: string, sampleId: string, revision: number, key: string): Promise<Run> {

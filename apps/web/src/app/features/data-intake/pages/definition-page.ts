@@ -3,11 +3,12 @@ import { takeUntilDestroyed } from '@angular/core/rxjs-interop';
 import { MatButtonModule } from '@angular/material/button';
 import { RouterLink } from '@angular/router';
 import type { ProtectedColumn } from '@tallystone/contracts/permissions/schema';
+import { comparedWords } from '@tallystone/contracts/samples/balance-reading';
 import type { ColumnRole } from '@tallystone/contracts/samples/columns';
 import type { DraftContent } from '@tallystone/contracts/samples/definition';
 import { filter } from 'rxjs';
 import { CurrentModel } from '../../../core/current-model';
-import { Runs, hasEnded } from '../../../core/events/runs';
+import { type Run, Runs, hasEnded } from '../../../core/events/runs';
 import { newIdempotencyKey } from '../../../core/http/etag';
 import { Problem } from '../../../core/http/problem';
 import { Task } from '../../../core/task';
@@ -20,14 +21,16 @@ import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { Tombstone } from '../../../ui/tombstone';
 import { DraftStore } from '../data/draft-store';
-import { type ColumnProfile, Samples, balanceOf, columnsOf, definitionsOf, oneSample, protectedOf } from '../data/samples';
+import { type ColumnProfile, Samples, balanceOf, columnsOf, definitionsOf, draftBalanceOf, oneSample, protectedOf } from '../data/samples';
 import { BalanceTable } from '../ui/balance-table';
+import { DraftBalance } from '../ui/draft-balance';
 import { ExclusionList } from '../ui/exclusion-list';
 import { countsFinding } from '../ui/findings';
 import { OutcomeEditor } from '../ui/outcome-editor';
 import { PartitionEditor } from '../ui/partition-editor';
 import { PartitionTable } from '../ui/partition-table';
 import { ProtectedList } from '../ui/protected-list';
+import { runTitles } from '../ui/run-titles';
 import { SampleSteps } from '../ui/sample-steps';
 import { SaveStateNote } from '../ui/save-state';
 import { SensitivityTable } from '../ui/sensitivity-table';
@@ -43,6 +46,7 @@ import { WaterfallFigure } from '../ui/waterfall-figure';
     MatButtonModule,
     BalanceTable,
     DecisionNotice,
+    DraftBalance,
     ExclusionList,
     OutcomeEditor,
     PageHeader,
@@ -85,8 +89,10 @@ export class DefinitionPage {
   protected readonly confirming = new Task();
   protected readonly changing = signal(false);
   protected readonly moment = moment;
+  protected readonly comparedWords = comparedWords;
   private readonly runId = signal<string | null>(null);
   protected readonly run = this.runs.run(() => this.runId() ?? (this.sample.hasValue() ? this.sample.value().runId : null));
+  protected readonly runTitle = computed(() => runTitles[this.run()?.kind ?? ''] ?? 'The run');
   readonly unsaved = this.draft.unsaved;
 
   protected readonly editable = computed(() => this.sample.hasValue() && this.sample.value().abilities.includes('define'));
@@ -97,6 +103,7 @@ export class DefinitionPage {
   /** Shown instead of the draft until somebody works on another definition. */
   protected readonly confirmed = computed(() => (this.changing() ? null : this.latest()));
   protected readonly balance = balanceOf(this.model, this.id, () => this.confirmed()?.id ?? null);
+  protected readonly draftBalance = draftBalanceOf(this.model, this.id, () => !this.confirmed() && this.draft.content() !== null);
   protected readonly protection = protectedOf(() => this.confirmed()?.id ?? null);
   protected readonly withdrawing = new Task();
   protected readonly weight = computed(() => this.draft.content()?.columns.find(({ role }) => role === 'weight')?.column ?? null);
@@ -143,7 +150,8 @@ export class DefinitionPage {
       .subscribe((run) => {
         this.definitions.reload();
         this.sample.reload();
-        if (run.state === 'succeeded') this.changing.set(false);
+        this.draftBalance.reload();
+        if (run.kind === 'sample.confirm' && run.state === 'succeeded') this.changing.set(false);
         void this.current.reload();
       });
   }
@@ -209,13 +217,20 @@ export class DefinitionPage {
     });
   }
 
-  protected async confirm(): Promise<void> {
+  protected confirm(): Promise<void> {
+    return this.startRun((revision, key) => this.samples.confirm(this.modelId(), this.sampleId(), revision, key));
+  }
+
+  protected compare(): Promise<void> {
+    return this.startRun((revision, key) => this.samples.compare(this.modelId(), this.sampleId(), revision, key));
+  }
+
+  /** Starts a run on the draft as it is now, and follows it. */
+  private async startRun(start: (revision: number, key: string) => Promise<Run>): Promise<void> {
     await this.draft.flush();
     const revision = this.draft.revision();
     if (revision === null) return;
-    const run = await this.confirming.run(() =>
-      this.samples.confirm(this.modelId(), this.sampleId(), revision, newIdempotencyKey()),
-    );
+    const run = await this.confirming.run(() => start(revision, newIdempotencyKey()));
     if (!run) return;
     this.runs.follow(run);
     this.runId.set(run.id);

@@ -16,13 +16,8 @@ import { StatusMark, type StatusTone } from '../../../ui/status-mark';
 import { type SampleSummary, Samples, type UploadSummary, sampleList } from '../data/samples';
 import { Uploads } from '../data/uploads';
 import { samplesFinding } from '../ui/findings';
+import { runTitles } from '../ui/run-titles';
 import { UploadPanel } from '../ui/upload-panel';
-
-const runTitles: Readonly<Record<string, string>> = {
-  'sample.read': 'Reading the file',
-  'sample.confirm': 'Confirming the definition',
-  'sample.quality': 'Making the quality report',
-};
 
 /** Samples of the model: bring in a file, take up one that arrived in part, open one. */
 @Component({

@@ -11,7 +11,7 @@ import { movedMost } from './balance-view';
   changeDetection: ChangeDetectionStrategy.OnPush,
   imports: [DenseTable],
   template: `
-    <h3>Balance of the partition</h3>
+    <h4>Balance of the partition</h4>
     @if (rows(); as rows) {
       <p>{{ finding() }}</p>
       <ts-table caption="Stability index by characteristic, against development" [columns]="columns" [rows]="rows" [identify]="byColumn" />

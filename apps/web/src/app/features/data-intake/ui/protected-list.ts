@@ -10,7 +10,7 @@ import { actWords, standingWords, unflaggedWords } from './protected-words';
   changeDetection: ChangeDetectionStrategy.OnPush,
   imports: [MatButtonModule, StatusMark],
   template: `
-    <h3>Protected columns</h3>
+    <h4>Protected columns</h4>
     <ul aria-label="Protected columns">
       @for (column of protection().columns; track column.column) {
         <li>
