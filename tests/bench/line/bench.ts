@@ -4,6 +4,7 @@
  *
  *   npm run bench:line -- --rows 1000000 --columns 100          in words
  *   npm run bench:line -- --rows 1000000 --columns 100 --json   one JSON object on standard output
+ *   ... --indeterminate 0.08   a share of the rows is neither good nor bad: every fit is made again with them as good and as bad
  *   ... --profile DIR   CPU profiles of the worker's threads
  */
 import { chmodSync, mkdtempSync, rmSync, statSync } from 'node:fs';
@@ -27,12 +28,14 @@ const { values: given } = parseArgs({
   options: {
     rows: { type: 'string', default: '1000000' },
     columns: { type: 'string', default: '100' },
+    indeterminate: { type: 'string', default: '0' },
     json: { type: 'boolean', default: false },
     profile: { type: 'string' },
   },
 });
 const rows = Number(given.rows);
 const columns = Number(given.columns);
+const indeterminate = Number(given.indeterminate);
 const say = (line: string): void => console.error(line);
 /** Minutes that a run is waited for. */
 const PATIENCE_MS = 20 * 60_000;
@@ -51,7 +54,7 @@ const folder = mkdtempSync(join(tmpdir(), 'tallystone-bench-'));
 chmodSync(folder, 0o755);
 try {
   const path = join(folder, 'applications.csv');
-  const sha256 = writeLineFile(path, rows, columns);
+  const sha256 = writeLineFile(path, rows, columns, indeterminate);
   const { size: bytes } = statSync(path);
   say(`${rows} rows, ${columns} columns, ${(bytes / 1e6).toFixed(1)} MB`);
   const data = join(folder, 'data');
@@ -71,7 +74,7 @@ try {
       await validator.enter(people.vincent.email);
       await line(modeller, validator, { url: web.url, path, bytes, sha256 });
       const peak = { web: megabytes(web.process), worker: megabytes(worker.process) };
-      if (given.json) console.log(JSON.stringify({ rows, columns, bytes, seconds: steps, peakMemoryMB: peak }));
+      if (given.json) console.log(JSON.stringify({ rows, columns, indeterminate, bytes, seconds: steps, peakMemoryMB: peak }));
       else say(`peak memory: web ${peak.web.toFixed(0)} MB, worker ${peak.worker.toFixed(0)} MB`);
     } finally {
       await Promise.all([endService(web.process), endService(worker.process)]);
@@ -124,7 +127,7 @@ async function line(
         return { ...column, role: 'characteristic', special: [{ label: 'no bureau record', values: [-999] }] };
       return column.role === 'characteristic' ? { ...column, reason: column.reason ?? 'as stated' } : column;
     }),
-    outcome: { good: ['0'], bad: ['1'], indeterminate: [], excluded: [] },
+    outcome: { good: ['0'], bad: ['1'], indeterminate: indeterminate > 0 ? ['2'] : [], excluded: [] },
     exclusions: [
       { reason: 'Younger than 21', combine: 'all', tests: [{ column: 'age_1', below: 21 }] },
       { reason: 'No place to live stated', combine: 'all', tests: [{ column: 'housing_1', missing: true }] },
@@ -136,10 +139,15 @@ async function line(
   );
   if (saved.body.problems.length > 0) throw new Error(JSON.stringify(saved.body.problems));
   await timed('check the draft', () => modeller.post(`${sampleUrl}/draft/check`).expect(200));
+  const { revision } = saved.body as { revision: number };
+  await timed('compare the partitions', async () => {
+    const { body } = await modeller.post(`${sampleUrl}/draft/balance`).set('Idempotency-Key', key()).send({ revision }).expect(202);
+    await ended(modeller, (body as Run).id);
+  });
   const definitionId = await timed('confirm', async () => {
     const { body } = await modeller
       .post(`${sampleUrl}/definitions`)
-      .send({ revision: saved.body.revision as number })
+      .send({ revision })
       .expect(202);
     return (await ended(modeller, (body as Run).id)).result as { definitionId: string };
   }).then((result) => result.definitionId);

@@ -19,11 +19,17 @@ const risk: Readonly<Record<string, (field: string) => number>> = {
   searches_1: (field) => 0.08 * Math.min(10, Number(field)),
 };
 
-/** Writes the mixed file with an outcome that a scorecard can find something in. @returns SHA-256 of the bytes */
-export function writeLineFile(path: string, rows: number, count: number): string {
+/**
+ * Writes the mixed file with an outcome that a scorecard can find something in: 0, 1, and 2 for those of whom nobody can tell.
+ *
+ * @param indeterminate share of the rows that are neither good nor bad, whatever else they are
+ * @returns SHA-256 of the bytes
+ */
+export function writeLineFile(path: string, rows: number, count: number, indeterminate = 0): string {
   const columns: MixedColumn[] = mixedColumns(count);
   const random = chances(12_345);
   const toss = chances(54_321);
+  const unknown = chances(98_765);
   const effects = columns.flatMap(({ name }, j) => (name in risk ? [{ j, effect: risk[name] }] : []));
   const hash = createHash('sha256');
   const file = openSync(path, 'w');
@@ -37,6 +43,7 @@ export function writeLineFile(path: string, rows: number, count: number): string
     const fields = columns.map(({ field }) => field(random, row));
     const eta = effects.reduce((sum, { j, effect }) => sum + effect(fields[j]), -3.9);
     fields[fields.length - 1] = toss() < 1 / (1 + Math.exp(-eta)) ? '1' : '0';
+    if (indeterminate > 0 && unknown() < indeterminate) fields[fields.length - 1] = '2';
     text += `${fields.join(',')}\n`;
     if (text.length >= 8 << 20) {
       write(text);
