@@ -58,7 +58,13 @@ export const AskedConstraints = Constraints.omit({ trendBy: true }).extend({
 export type AskedConstraints = z.infer<typeof AskedConstraints>;
 
 /** Goods and bads weighted, rows counted: one entry per slot (see Fine). Only rows with a good or bad outcome. */
-export const SlotCounts = z.object({ rows: z.array(finite), goods: z.array(finite), bads: z.array(finite) });
+export const SlotCounts = z.object({
+  rows: z.array(finite),
+  goods: z.array(finite),
+  bads: z.array(finite),
+  /** How many of the rows are bad. Left out without weights, where `bads` says it, and where fine classes were counted before this was. */
+  badRows: z.array(finite).optional(),
+});
 export type SlotCounts = z.infer<typeof SlotCounts>;
 
 /**
@@ -70,6 +76,8 @@ export const Fine = z.object({
   kind: z.enum(['numeric', 'categorical']),
   /** Ascending; empty for a categorical characteristic. */
   edges: z.array(finite),
+  /** Those of `edges` that a cut by hand put inside a fine class: automatic classing does without them, so that it can be repeated. Left out without any. */
+  splits: z.array(finite).optional(),
   closed: z.enum(['left', 'right']),
   /** Smallest and largest known value of development; null without any. */
   range: z.tuple([finite, finite]).nullable(),

@@ -45,4 +45,40 @@ describe('the trend chosen by cross-validation', () => {
     expect(chooseTrend(fine, constraints, { folds: 5, seed: 3 }).deviances).not.toEqual(first.deviances);
     expect(() => chooseTrend(fine, constraints, { folds: 1, seed: 1 })).toThrow('two folds');
   });
+
+  it('does not depend on the unit in which weights are stated', () => {
+    for (let seed = 1; seed <= 20; seed++) {
+      const { goods, bads, rows } = drawn((at) => 1 - 1.5 * at, 100, seed);
+      const plain = chooseTrend({ goods, bads, rows }, constraints, { folds: 5, seed: 1 });
+      for (const unit of [0.01, 0.1, 0.5, 2, 10, 1000]) {
+        const scaled = { goods: goods.map((count) => count * unit), bads: bads.map((count) => count * unit), rows, badRows: bads };
+        const least = { ...constraints, smallestGoods: constraints.smallestGoods * unit, smallestBads: constraints.smallestBads * unit };
+        const found = chooseTrend(scaled, least, { folds: 5, seed: 1 });
+        expect(found.trend, `seed ${seed}, unit ${unit}`).toBe(plain.trend);
+        found.deviances.forEach((deviance, i) => expect(deviance).toBeCloseTo(plain.deviances[i], 9));
+      }
+    }
+  });
+
+  it('draws rows: where bads weigh less than goods, it is as sure as its rows allow', () => {
+    // A tenth of the goods was sampled and all of the bads: every good stands for ten.
+    const { goods, bads, rows } = drawn((at) => 3 * at, 400, 3);
+    const weighted = { goods: goods.map((count) => count * 10), bads, rows, badRows: bads };
+    const found = chooseTrend(weighted, { ...constraints, smallestGoods: 100 }, { folds: 5, seed: 1 });
+    expect(found.trend).toBe('rising');
+    // Without the rows by outcome they are parted as the weights are: fewer bad rows than there were, and so other draws.
+    expect(chooseTrend({ ...weighted, badRows: undefined }, { ...constraints, smallestGoods: 100 }, { folds: 5, seed: 1 }).deviances).not.toEqual(found.deviances);
+  });
+
+  it('keeps the smallest share of the training rows, whatever the rows weigh', () => {
+    // Rows by class; a class of 4 % of the rows cannot stand alone, though it carries half of all weight.
+    const rows = [480, 40, 480];
+    const goods = [400, 2000, 100];
+    const bads = [80, 500, 380];
+    const badRows = [80, 8, 380];
+    const shares = chooseTrend({ goods, bads, rows, badRows }, { ...constraints, smallestShare: 0.2 }, { folds: 5, seed: 4 });
+    const alone = chooseTrend({ goods, bads, rows, badRows }, { ...constraints, smallestShare: 0 }, { folds: 5, seed: 4 });
+    expect(shares.deviances).not.toEqual(alone.deviances);
+    expect(() => chooseTrend({ goods, bads, rows, badRows: [1, NaN, 1] }, constraints, { folds: 5, seed: 4 })).toThrow('badRows');
+  });
 });

@@ -4,13 +4,13 @@ import type { Warning } from '@tallystone/contracts/binnings/schema';
 import {
   type BenchReading,
   benchWarnings,
-  classCount,
   monthlyDrift,
   readBench,
   readingInterval,
   readingOfIv,
 } from '@tallystone/numeric/bench';
 import { classCategories } from '@tallystone/numeric/binning/categories';
+import type { TrendCounts } from '@tallystone/numeric/binning/choose-trend';
 import { classNumeric } from '@tallystone/numeric/binning/classing';
 import { crossValidatedTrend } from '../replay/classing';
 
@@ -26,7 +26,6 @@ export interface ClassedBins {
  */
 export function classFine(fine: Fine, asked: AskedConstraints): ClassedBins {
   const own = { special: fine.special.map(() => 'own' as const), missing: 'own' as const };
-  const classes = classCount(fine);
   const { rows, goods, bads } = fine.development;
   const totals = { goods: sum(goods), bads: sum(bads) };
   if (fine.kind === 'categorical') {
@@ -44,7 +43,7 @@ export function classFine(fine: Fine, asked: AskedConstraints): ClassedBins {
       },
     };
   }
-  const known = { rows: rows.slice(0, classes), goods: goods.slice(0, classes), bads: bads.slice(0, classes) };
+  const { edges, known } = withoutSplits(fine);
   const trends = trendsOf(known, asked, totals);
   const tried = trends.map((trend) => {
     const constraints: Constraints = {
@@ -55,11 +54,31 @@ export function classFine(fine: Fine, asked: AskedConstraints): ClassedBins {
     return { constraints, ...classNumeric(known, constraints, totals) };
   });
   const best = tried.reduce((a, b) => (b.worth > a.worth ? b : a));
-  return { constraints: best.constraints, bins: { kind: 'numeric', edges: best.cuts.map((cut) => fine.edges[cut - 1]), ...own } };
+  return { constraints: best.constraints, bins: { kind: 'numeric', edges: best.cuts.map((cut) => edges[cut - 1]), ...own } };
+}
+
+/**
+ * The fine classes as they were before cuts by hand split them: what automatic classing works on, or no fold and nobody who replays could come to the
+ * same bins.
+ */
+function withoutSplits({ edges, splits = [], development }: Fine): { edges: number[]; known: TrendCounts } {
+  const split = new Set(splits);
+  const kept = edges.filter((edge) => !split.has(edge));
+  const merged = (counts: readonly number[]): number[] => {
+    const sums = new Array<number>(kept.length + 1).fill(0);
+    let place = 0;
+    for (let slot = 0; slot <= edges.length; slot++) {
+      sums[place] += counts[slot];
+      if (slot < edges.length && !split.has(edges[slot])) place++;
+    }
+    return sums;
+  };
+  const { rows, goods, bads, badRows } = development;
+  return { edges: kept, known: { rows: merged(rows), goods: merged(goods), bads: merged(bads), badRows: badRows && merged(badRows) } };
 }
 
 function trendsOf(
-  known: { rows: number[]; goods: number[]; bads: number[] },
+  known: TrendCounts,
   asked: AskedConstraints,
   totals: { goods: number; bads: number },
 ): Constraints['trend'][] {

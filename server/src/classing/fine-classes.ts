@@ -82,8 +82,12 @@ export function splitFineClasses(
   fine: Fine,
   more: readonly number[],
 ): SlottedFineClassing {
-  const edges = [...new Set([...fine.edges, ...more])].sort((a, b) => a - b);
-  return countSlots(defined, source, data, counted, tallied, { edges, categories: [], range: fine.range });
+  const here = new Set(fine.edges);
+  const fresh = [...new Set(more)].filter((edge) => !here.has(edge));
+  const ascending = (list: number[]): number[] => list.sort((a, b) => a - b);
+  const edges = ascending([...fine.edges, ...fresh]);
+  const splits = ascending([...(fine.splits ?? []), ...fresh]);
+  return countSlots(defined, source, data, counted, tallied, { edges, ...(splits.length > 0 ? { splits } : {}), categories: [], range: fine.range });
 }
 
 /** A specification entry whose bins are the fine classes, so that the chain itself gives each row its slot. */
@@ -114,7 +118,7 @@ function countSlots(
   data: DataReading,
   counted: CountedRows,
   tallied: TalliedColumn | null,
-  classes: Pick<Fine, 'edges' | 'categories' | 'range'>,
+  classes: Pick<Fine, 'edges' | 'splits' | 'categories' | 'range'>,
 ): SlottedFineClassing {
   const empty: Fine = {
     kind: defined.kind,
@@ -127,7 +131,8 @@ function countSlots(
   };
   const slots = slotCount(empty);
   const slotOf = tallied && slotsOfTexts(defined, tallied, data, counted, source, empty);
-  const count = (): SlotCounts => ({ rows: zeros(slots), goods: zeros(slots), bads: zeros(slots) });
+  const weighted = counted.weights !== null;
+  const count = (): SlotCounts => ({ rows: zeros(slots), goods: zeros(slots), bads: zeros(slots), ...(weighted ? { badRows: zeros(slots) } : {}) });
   const [development, holdOut, outOfTime] = [count(), count(), count()];
   if (tallied && slotOf) {
     const { rows, weights } = tallied;
@@ -142,6 +147,7 @@ function countSlots(
         counts.rows[slot] += rows[at] + rows[at + 1];
         counts.goods[slot] += weights[at + 1];
         counts.bads[slot] += weights[at];
+        if (counts.badRows) counts.badRows[slot] += rows[at];
       }
     }
   }

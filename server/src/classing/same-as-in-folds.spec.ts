@@ -1,12 +1,13 @@
-import { AskedConstraints } from '@tallystone/contracts/binnings/bins';
+import { AskedConstraints, type Bins } from '@tallystone/contracts/binnings/bins';
 import type { EarlierEdit } from '@tallystone/numeric/bench';
+import { classNumeric } from '@tallystone/numeric/binning/classing';
 import { Generator } from '@tallystone/numeric/random/generator';
 import { describe, expect, it } from 'vitest';
 import { automaticEdges, automaticGroups } from '../replay/classing';
 import { type SourceColumn, sourceOf } from '../replay/source';
 import { BAD, DEVELOPMENT, GOOD } from '../replay/types';
 import type { TaskControl } from '../threads/task';
-import { classColumn } from './class-column';
+import { classColumn, reclassFine, splitColumn } from './class-column';
 
 /**
  * The bench classes from counted fine classes, a fold of the cross-validation from rows in memory. On the same rows both have to come to the
@@ -136,5 +137,37 @@ describe('fine classes as many as the form allows', () => {
     const carried = classed([{ kind: 'cut added', before, after, special: ['none'] }]);
     expect(carried.fine.edges).toHaveLength(200);
     expect(carried.carried).toMatchObject([{ kept: true, what: 'Cut added at 123456.5' }]);
+  });
+});
+
+describe('fine classes that a cut by hand has split', () => {
+  it('are put together again when a characteristic is classed anew: what is called automatic can be repeated', () => {
+    const sample = invented(5);
+    const asked = AskedConstraints.parse({ trend: 'falling', fineClasses: 12, mostBins: 6, smallestDifference: 0 });
+    const defined = { column: 'utilisation', kind: 'numeric' as const, special: [{ label: 'no record', values: [-999] }] };
+    const counted = { rows: ROWS, partition: new Uint8Array(ROWS).fill(DEVELOPMENT), outcome: sample.outcome, weights: sample.weights };
+    const column = sample.column('utilisation');
+    const source = { defined, column, data: { ...data, missing: [...data.missing] }, counted, months: null };
+    const first = classColumn({ ...source, constraints: asked }, control);
+    if (first instanceof Promise || 'unusable' in first) throw new Error('It can be classed');
+    let { fine } = first;
+    for (const edge of [17.25, 41.05, 66.6]) {
+      const split = splitColumn({ ...source, fine, edge }, control);
+      if (split instanceof Promise) throw new Error('It answers at once');
+      ({ fine } = split);
+    }
+    expect(fine.splits).toEqual([17.25, 41.05, 66.6]);
+    expect(fine.edges.length).toBe(first.fine.edges.length + 3);
+    const [again] = reclassFine({ characteristics: [{ fine, outOfTime: first.outOfTime, months: null, constraints: asked }] }, control) as { automatic: Bins }[];
+    expect(again.automatic).toEqual(first.automatic);
+    const values = Float64Array.from(sample.utilisation, (text) => (text === '' || text === '-999' ? NaN : Number(text)));
+    const settings = { made: 'automatic', ...asked, trend: 'falling' } as const;
+    expect(again.automatic).toMatchObject({ edges: automaticEdges(values, sample.outcome, sample.weights, settings, 'left') });
+    // With the split classes another partition would have been better: the test tells the two apart.
+    const finer = classNumeric(
+      { rows: fine.development.rows.slice(0, fine.edges.length + 1), goods: fine.development.goods.slice(0, fine.edges.length + 1), bads: fine.development.bads.slice(0, fine.edges.length + 1) },
+      { ...asked, trend: 'falling' },
+    );
+    expect(finer.cuts.map((cut) => fine.edges[cut - 1])).not.toEqual((first.automatic as { edges: number[] }).edges);
   });
 });

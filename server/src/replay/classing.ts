@@ -5,7 +5,7 @@ import {
   classNumeric,
   fineEdges,
   type Constraints,
-  type FineCounts,
+  type TrendCounts,
 } from '@tallystone/numeric';
 import type { AutomaticClassing } from '@tallystone/contracts/specification/types';
 
@@ -32,6 +32,7 @@ export function automaticEdges(
   const rows = new Float64Array(edges.length + 1);
   const goods = new Float64Array(edges.length + 1);
   const bads = new Float64Array(edges.length + 1);
+  const badRows = new Float64Array(edges.length + 1);
   const totals = { goods: 0, bads: 0 };
   for (let index = 0; index < values.length; index++) {
     if (uses !== null && uses[index] === 0) continue;
@@ -42,9 +43,10 @@ export function automaticEdges(
     if (Number.isNaN(values[index])) continue;
     const fine = binOf(values[index], edges, closed);
     rows[fine]++;
+    if (!good) badRows[fine]++;
     (good ? goods : bads)[fine] += weight;
   }
-  const classes = { goods, bads, rows };
+  const classes = { goods, bads, rows, badRows };
   const constraints = constraintsOf(settings);
   // What was chosen by cross-validation is chosen again here: a fold that kept the trend of all rows would know more than it may.
   const trend = settings.trendBy === 'cross-validation' ? crossValidatedTrend(classes, constraints, totals) : constraints.trend;
@@ -54,7 +56,7 @@ export function automaticEdges(
 
 /** The trend with the smallest cross-validated deviance. Folds and seed are fixed, so that the same counts have the same trend everywhere. */
 export function crossValidatedTrend(
-  known: FineCounts,
+  known: TrendCounts,
   constraints: Constraints,
   totals: { goods: number; bads: number },
 ): Constraints['trend'] {
