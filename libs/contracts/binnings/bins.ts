@@ -83,6 +83,11 @@ export const Fine = z.object({
   range: z.tuple([finite, finite]).nullable(),
   /** Categories of development by falling number of rows; empty for a numeric characteristic. */
   categories: z.array(z.string()),
+  /**
+   * Where there are more categories than a bench can tell apart: the rarest of them, classed as one. `name` stands for all of them, last among
+   * `categories` and in bins; a specification lists each. Left out where every category stands for itself.
+   */
+  pooled: z.object({ name: z.string(), categories: z.array(z.string()) }).optional(),
   /** Labels of the special codes. */
   special: z.array(z.string()),
   development: SlotCounts,

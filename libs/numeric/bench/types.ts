@@ -19,6 +19,8 @@ export interface FineClasses {
   /** Smallest and largest known value of development; null without any. */
   readonly range: readonly [number, number] | null;
   readonly categories: readonly string[];
+  /** The rarest categories, classed as one under a name that stands last among `categories`; left out where every category stands for itself. */
+  readonly pooled?: { readonly name: string; readonly categories: readonly string[] } | undefined;
   /** Labels of the special codes. */
   readonly special: readonly string[];
   readonly development: SlotCounts;

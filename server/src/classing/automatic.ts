@@ -31,7 +31,7 @@ export function classFine(fine: Fine, asked: AskedConstraints): ClassedBins {
   if (fine.kind === 'categorical') {
     // Groups are ordered by rate: a trend over them has no meaning of its own.
     const constraints: Constraints = { ...asked, trend: 'any' };
-    const categories = fine.categories.map((_, slot) => ({ rows: rows[slot], goods: goods[slot], bads: bads[slot] }));
+    const categories = fine.categories.map((_, slot) => ({ rows: rows[slot], goods: goods[slot], bads: bads[slot], pooled: fine.categories[slot] === fine.pooled?.name }));
     const { groups } = classCategories(categories, constraints, totals);
     return {
       constraints,

@@ -76,7 +76,7 @@ export const classColumn: Task<ClassColumn, ClassedColumn | { readonly unusable:
     const current = bins as Bins;
     const months = rowMonths && countMonths(tallied && tallied.column, slotOf, counted, fine, rowMonths);
     const classing = steps.some(({ kept }) => kept) ? ({ made: 'by hand' } as const) : automaticClassing(constraints);
-    const definition = withBins(fineEntry(defined, fine.edges, fine.categories), current, classing);
+    const definition = withBins(fineEntry(defined, fine), current, classing, fine.pooled);
     return {
       definition,
       automatic,

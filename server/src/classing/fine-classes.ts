@@ -1,5 +1,6 @@
 import type { Fine, SlotCounts } from '@tallystone/contracts/binnings/bins';
 import type { BinnedCharacteristic, DataReading } from '@tallystone/contracts/specification/types';
+import { mostApart } from '@tallystone/numeric/binning/categories';
 import { fineEdgesOfCounts } from '@tallystone/numeric/binning/fine-classes';
 import { slotCount } from '@tallystone/numeric/bench';
 import { codeCharacteristics } from '../replay/coding';
@@ -18,8 +19,11 @@ export interface DefinedCharacteristic {
   readonly special: readonly { readonly label: string; readonly values: readonly (number | string)[] }[];
 }
 
-/** A byte holds 250 codes; special codes and missing need theirs. */
-export const mostCategories = 240;
+/** More different texts are a name or a number of something rather than categories. */
+export const mostCategories = 2000;
+
+/** What stands for the rarest categories where there are more than a byte has codes for. */
+const rarer = 'rarer categories';
 
 /** Most cuts of fine classes beside so many special codes: the classes between and around them, the codes and missing share the 250 codes. */
 export const mostFineEdges = (special: number): number => 248 - special;
@@ -27,7 +31,7 @@ export const mostFineEdges = (special: number): number => 248 - special;
 export class TooManyCategories extends Error {
   constructor(readonly categories: number) {
     super(
-      `It has ${categories} different values in development; at most ${mostCategories} can be classed. Group them before the file is brought in.`,
+      `It has ${categories} different values in development; at most ${mostCategories} can be classed, the rarest of them as one. Group them before the file is brought in.`,
     );
   }
 }
@@ -58,8 +62,8 @@ export function fineClasses(
   fineClassCount: number,
 ): SlottedFineClassing {
   if (defined.kind === 'categorical') {
-    const categories = tallied ? categoriesOf(defined, data, tallied) : [];
-    return countSlots(defined, source, data, counted, tallied, { edges: [], categories, range: null });
+    const classes = categoryClasses(tallied ? categoriesOf(defined, data, tallied) : []);
+    return countSlots(defined, source, data, counted, tallied, { edges: [], ...classes, range: null });
   }
   const { values, rows } = tallied ? knownValues(defined, data, tallied) : { values: [], rows: [] };
   const edges = values.length > 0 ? fineEdgesOfCounts(values, rows, fineClassCount) : [];
@@ -93,8 +97,7 @@ export function splitFineClasses(
 /** A specification entry whose bins are the fine classes, so that the chain itself gives each row its slot. */
 export function fineEntry(
   defined: DefinedCharacteristic,
-  edges: readonly number[],
-  categories: readonly string[],
+  { edges, categories, pooled }: Pick<Fine, 'edges' | 'categories' | 'pooled'>,
 ): BinnedCharacteristic {
   const base = { column: defined.column, penaltyMultiplier: 1, lower: null, upper: null, coding: 'woe', missing: 'own' } as const;
   const special = defined.special.map(({ label, values }) => ({ label, values: [...values], bin: 'own' as const }));
@@ -105,7 +108,7 @@ export function fineEntry(
   return {
     ...base,
     kind: 'categorical',
-    groups: categories.map((category) => [category]),
+    groups: categories.map((category) => (category === pooled?.name ? [...pooled.categories] : [category])),
     special: texts,
     unseen: 'neutral',
     classing: { made: 'by hand' },
@@ -118,7 +121,7 @@ function countSlots(
   data: DataReading,
   counted: CountedRows,
   tallied: TalliedColumn | null,
-  classes: Pick<Fine, 'edges' | 'splits' | 'categories' | 'range'>,
+  classes: Pick<Fine, 'edges' | 'splits' | 'categories' | 'pooled' | 'range'>,
 ): SlottedFineClassing {
   const empty: Fine = {
     kind: defined.kind,
@@ -201,10 +204,10 @@ export function slotsOfTexts(
   data: DataReading,
   counted: CountedRows,
   source: ColumnSource,
-  fine: Pick<Fine, 'kind' | 'edges' | 'categories' | 'special'>,
+  fine: Pick<Fine, 'kind' | 'edges' | 'categories' | 'pooled' | 'special'>,
 ): Uint8Array {
   const unseen = slotCount(fine as Fine) - 1;
-  const entry = fineEntry(defined, fine.edges, fine.categories);
+  const entry = fineEntry(defined, fine);
   return codesOfTexts(defined, entry, tallied, data, counted, source).map((code) => (code === NO_BIN ? unseen : code));
 }
 
@@ -261,6 +264,16 @@ function knownValues(
     rows.push(developed);
   }
   return { values, rows };
+}
+
+/** The most frequent categories each for itself; where there are too many for that, the rest as one under a name that no category has. */
+function categoryClasses(categories: readonly string[]): Pick<Fine, 'categories' | 'pooled'> {
+  if (categories.length <= mostApart + 1) return { categories: [...categories] };
+  const apart = categories.slice(0, mostApart);
+  const here = new Set(categories);
+  let name = rarer;
+  while (here.has(name)) name = `${name} *`;
+  return { categories: [...apart, name], pooled: { name, categories: categories.slice(mostApart) } };
 }
 
 /** By falling number of development rows, so that what matters stands first; equal ones by their text. */

@@ -84,7 +84,7 @@ async function completeOne(
       if (fine.edges.length !== read.characteristic.fine.edges.length) return false;
       await storeMonths(sequelize, tx, id, months);
       await BinningCharacteristic.update(
-        summarise({ fine, outOfTime, months: months?.counts ?? null }, binsOfEntry(definition), constraints),
+        summarise({ fine, outOfTime, months: months?.counts ?? null }, binsOfEntry(definition, fine.pooled), constraints),
         { where: { id }, transaction: tx },
       );
       return true;

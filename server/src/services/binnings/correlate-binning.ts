@@ -72,7 +72,8 @@ export async function correlateBinning(
   progress('Correlating', null);
   const bins = telling.map(({ definition }) => binsOfEntry(definition));
   const columns = coded.characteristics.map(({ codes }, index) => {
-    const reading = readBench(telling[index].fine, bins[index]);
+    const { fine, definition } = telling[index];
+    const reading = readBench(fine, binsOfEntry(definition, fine.pooled));
     return {
       codes: codes ?? new Uint8Array(coded.rows),
       values: reading.bins.map(({ figures }) => figures.development?.woe ?? 0),

@@ -113,7 +113,7 @@ export async function presentDetail(
   return {
     ...presentSummary(characteristic, outOfTime, group),
     definition,
-    current: binsOfEntry(definition),
+    current: binsOfEntry(definition, fine.pooled),
     automatic,
     constraints,
     fine: { ...fine, outOfTime: outOfTime === 'opened' ? characteristic.outOfTime : null },

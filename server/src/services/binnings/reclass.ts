@@ -147,7 +147,7 @@ async function storeReclassed(
       {
         automatic,
         constraints,
-        definition: withBins(one.definition, automatic, automaticClassing(constraints)),
+        definition: withBins(one.definition, automatic, automaticClassing(constraints), one.fine.pooled),
         summary,
         outOfTimeWarnings,
         outOfTimeCsi,
@@ -164,7 +164,7 @@ async function storeReclassed(
       entity: 'binning-characteristic',
       entityId: one.id,
       modelId: binning.modelId,
-      before: binsOfEntry(one.definition),
+      before: binsOfEntry(one.definition, one.fine.pooled),
       after: automatic,
       detail: { column: one.column, constraints, editsDropped: one.edits },
       ...(reason === '' ? {} : { reason }),

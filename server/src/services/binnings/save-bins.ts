@@ -46,7 +46,7 @@ export async function saveBins(
   );
   for (const edit of sent.edits) requireSame(known.get(edit.id), edit, characteristic.id);
 
-  const current = binsOfEntry(characteristic.definition);
+  const current = binsOfEntry(characteristic.definition, fine.pooled);
   if (
     !sameBins(current, sent.bins) ||
     before.length !== sent.edits.length ||
@@ -56,7 +56,7 @@ export async function saveBins(
     const classing = sent.edits.length > 0 ? ({ made: 'by hand' } as const) : automaticClassing(constraints);
     await BinningCharacteristic.update(
       {
-        definition: withBins(characteristic.definition, sent.bins, classing),
+        definition: withBins(characteristic.definition, sent.bins, classing, fine.pooled),
         ...summarise({ fine, outOfTime, months: months && months.counts }, sent.bins, constraints),
         revision: characteristic.revision + 1,
         changedAt: new Date(),
