@@ -23,14 +23,13 @@ import { DecisionNotice } from '../../../ui/decision-notice';
 import { DictionaryStore } from '../data/dictionary-store';
 import { DraftStore } from '../data/draft-store';
 import { type ColumnProfile, columnsOf, oneSample } from '../data/samples';
-import { CarriedNote } from '../ui/carried-note';
-import { ReadAgainNote } from '../ui/read-again-note';
 import { ColumnEditor } from '../ui/column-editor';
 import { DictionaryEditor } from '../ui/dictionary-editor';
 import { WordsConflictNote } from '../ui/words-conflict';
 import { flagsOf, mostFrequentOf, rangeOf } from '../ui/findings';
 import { SampleSteps } from '../ui/sample-steps';
 import { SaveStateNote } from '../ui/save-state';
+import { TakenOverNote, carriedOver, keptOver } from '../ui/taken-over';
 import type { DefinedColumn } from '@tallystone/contracts/samples/definition';
 import { labelWords } from '@tallystone/contracts/samples/labels';
 
@@ -49,8 +48,6 @@ interface Row {
     SortInAddress,
     RouterLink,
     MatButtonModule,
-    CarriedNote,
-    ReadAgainNote,
     CellTemplate,
     ColumnEditor,
     DenseTable,
@@ -61,6 +58,7 @@ interface Row {
     ProblemList,
     SampleSteps,
     SaveStateNote,
+    TakenOverNote,
     Tombstone,
   ],
   template: `
@@ -100,11 +98,8 @@ interface Row {
           <button tsDecide matButton="outlined" type="button" (click)="importAgain()">Import mine</button>
         </ts-decision>
       }
-      @if (words.dictionary()?.carried; as carried) {
-        <ts-carried-note [carried]="carried" />
-      }
-      @if (words.dictionary()?.readAgain; as kept) {
-        <ts-read-again-note [kept]="kept" />
+      @for (note of takenOver(); track $index) {
+        <ts-taken-over [note]="note" />
       }
       @if (draft.saveState() === 'stale') {
         <ts-save-state [state]="draft.saveState()" (theirs)="draft.reload()" (mine)="draft.keepMine()" />
@@ -244,6 +239,10 @@ export class ColumnsPage {
         label: entry.label || entry.unit ? labelWords(entry) : '',
       };
     });
+  });
+  protected readonly takenOver = computed(() => {
+    const { carried, readAgain } = this.words.dictionary() ?? { carried: null, readAgain: null };
+    return [...(carried ? [carriedOver(carried)] : []), ...(readAgain ? [keptOver(readAgain)] : [])];
   });
   protected readonly chosen = computed(
     () => this.rows().find(({ profile }) => profile.column === this.column()) ?? this.rows()[0] ?? null,
