@@ -1,5 +1,5 @@
 import { HttpClient, type HttpResourceRef, httpResource } from '@angular/common/http';
-import { Injectable, inject } from '@angular/core';
+import { Injectable, type Signal, computed, inject } from '@angular/core';
 import type { NewPermissionAct, ProtectedColumns } from '@tallystone/contracts/permissions/schema';
 import type { DraftBalance, PartitionBalance } from '@tallystone/contracts/samples/balance';
 import type { ColumnList, ColumnProfile, ColumnRole } from '@tallystone/contracts/samples/columns';
@@ -59,6 +59,14 @@ export function sampleList(modelId: () => string): HttpResourceRef<SampleList | 
 
 export function oneSample(modelId: () => string, sampleId: () => string): HttpResourceRef<Sample | undefined> {
   return httpResource<Sample>(() => of(modelId(), sampleId()));
+}
+
+/** The sample while its file has not been read, and so has no columns and no draft; null otherwise, and while nothing is known of it. */
+export function unreadOf(sample: HttpResourceRef<Sample | undefined>): Signal<Sample | null> {
+  return computed(() => {
+    const found = sample.hasValue() ? sample.value() : null;
+    return found?.rows === null ? found : null;
+  });
 }
 
 /** The doubtful lines that a reading which was refused found in the whole file; nothing is asked while `wanted` gives false. */

@@ -134,4 +134,28 @@ describe('ColumnsPage', () => {
     ]);
     expect(texts('ts-taken-over li')).toEqual(['region is not in the file any more.']);
   });
+
+  describe('of a file that has not been read', () => {
+    const unread = { ...sample, id: 's1', modelId: 'm1', state: 'received', rows: null, abilities: ['read-file'] };
+    const nothing: ColumnList = { columns: [], rows: 0, duplicateRows: 0, finding: 'The file has not been read yet.' };
+
+    it('says so once, leads to its reading, and asks for no draft', async () => {
+      await answer('', unread);
+      await answer('/columns', nothing);
+      expect(page().textContent.match(/has not been read yet/g)).toHaveLength(1);
+      expect(texts('ts-empty .text')).toEqual(['Its columns are known once it has been read.']);
+      expect(page().querySelector('ts-empty a')?.getAttribute('href')).toBe('/models/m1/sample/s1/reading');
+      expect(texts('ts-table, .problem, ts-page-header a')).toEqual([]);
+      expect(texts('nav .pages a')).toEqual(['Reading']);
+      server.verify();
+    });
+
+    it('says that nobody will read it where its rows were erased', async () => {
+      const erased = { at: '2026-02-01T00:00:00Z', by: 'Ida', reason: 'Sent by mistake.', sample: 1, fileName: 'applicants.csv' };
+      await answer('', { ...unread, erased, abilities: [] });
+      await answer('/columns', nothing);
+      expect(texts('ts-tombstone .ts-second')).toEqual(['The file had not been read before: nothing is known of its columns.']);
+      expect(texts('ts-empty')).toEqual([]);
+    });
+  });
 });

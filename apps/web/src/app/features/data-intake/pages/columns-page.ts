@@ -22,9 +22,10 @@ import { Tombstone } from '../../../ui/tombstone';
 import { DecisionNotice } from '../../../ui/decision-notice';
 import { DictionaryStore } from '../data/dictionary-store';
 import { DraftStore } from '../data/draft-store';
-import { type ColumnProfile, columnsOf, oneSample } from '../data/samples';
+import { type ColumnProfile, columnsOf, oneSample, unreadOf } from '../data/samples';
 import { ColumnEditor } from '../ui/column-editor';
 import { DictionaryEditor } from '../ui/dictionary-editor';
+import { NotReadYet } from '../ui/not-read-yet';
 import { WordsConflictNote } from '../ui/words-conflict';
 import { flagsOf, mostFrequentOf, rangeOf } from '../ui/findings';
 import { SampleSteps } from '../ui/sample-steps';
@@ -54,6 +55,7 @@ interface Row {
     DictionaryEditor,
     WordsConflictNote,
     DecisionNotice,
+    NotReadYet,
     PageHeader,
     ProblemList,
     SampleSteps,
@@ -67,21 +69,27 @@ interface Row {
         [modelId]="modelId()"
         [sampleId]="sampleId()"
         [fileName]="sample.value()?.fileName ?? ''"
-        [open]="['reading', 'columns', 'definition', 'quality']"
+        [read]="unread() === null"
       />
-      <ts-page-header title="Columns" [finding]="columns.value()?.finding ?? null">
-        @if (draft.saveState() !== 'stale') {
-          <ts-save-state [state]="draft.saveState()" [savedAt]="draft.savedAt()" [savedBy]="draft.savedBy()" />
+      <ts-page-header title="Columns" [finding]="finding()">
+        @if (!unread()) {
+          @if (draft.saveState() !== 'stale') {
+            <ts-save-state [state]="draft.saveState()" [savedAt]="draft.savedAt()" [savedBy]="draft.savedBy()" />
+          }
+          <a matButton="filled" [routerLink]="['/models', modelId(), 'sample', sampleId(), 'definition']"
+            >Outcome and partition</a
+          >
         }
-        <a matButton="filled" [routerLink]="['/models', modelId(), 'sample', sampleId(), 'definition']">Outcome and partition</a>
       </ts-page-header>
-      @if (sample.value()?.erased; as erased) {
+      @if (unread(); as waiting) {
+        <ts-not-read-yet [sample]="waiting" />
+      } @else if (sample.value()?.erased; as erased) {
         <ts-tombstone [erased]="erased"
           >Profiles stay, without values that fewer than five rows hold; roles and labels are read and no longer
           changed.</ts-tombstone
         >
       }
-      <ts-problems [error]="columns.error()" />
+      <ts-problems [error]="sample.error() ?? columns.error()" />
       <ts-problems [error]="draft.error()" />
       <ts-problems [error]="words.error()" next="Mend the file and import it again: nothing of it was taken." [limit]="60" />
       @for (conflict of words.conflicts(); track conflict.mine.column) {
@@ -104,46 +112,47 @@ interface Row {
       @if (draft.saveState() === 'stale') {
         <ts-save-state [state]="draft.saveState()" (theirs)="draft.reload()" (mine)="draft.keepMine()" />
       }
-      <div class="ts-split">
-        <ts-table
-          caption="Columns of the sample"
-          [columns]="table()"
-          [rows]="rows()"
-          [identify]="byColumn"
-          [quiet]="isQuiet"
-          [selected]="isSelected"
-          [activatable]="true"
-          tsSortInAddress
-          (activate)="choose($event.profile.column)"
-          empty="The file has not been read yet."
-        >
-          <ng-template tsCell="column" [tsCellRows]="rows()" let-row>
-            <button class="name" type="button" [attr.aria-pressed]="isSelected(row)" (click)="choose(row.profile.column)">
-              {{ row.profile.column }}
-            </button>
-          </ng-template>
-        </ts-table>
-        @if (chosen(); as row) {
-          <div class="chosen" #part>
-            <ts-column-editor
-              [profile]="row.profile"
-              [column]="row.defined"
-              [editable]="editable()"
-              [mayRead]="mayRead()"
-              (changed)="change($event)"
-              (readAgain)="readAgain($event)"
-            />
-            @if (words.dictionary()) {
-              <ts-dictionary-editor
-                [entry]="words.entry(row.profile.column)"
+      @if (rows().length > 0) {
+        <div class="ts-split">
+          <ts-table
+            caption="Columns of the sample"
+            [columns]="table()"
+            [rows]="rows()"
+            [identify]="byColumn"
+            [quiet]="isQuiet"
+            [selected]="isSelected"
+            [activatable]="true"
+            tsSortInAddress
+            (activate)="choose($event.profile.column)"
+          >
+            <ng-template tsCell="column" [tsCellRows]="rows()" let-row>
+              <button class="name" type="button" [attr.aria-pressed]="isSelected(row)" (click)="choose(row.profile.column)">
+                {{ row.profile.column }}
+              </button>
+            </ng-template>
+          </ts-table>
+          @if (chosen(); as row) {
+            <div class="chosen" #part>
+              <ts-column-editor
+                [profile]="row.profile"
                 [column]="row.defined"
-                [editable]="words.editable()"
-                (changed)="words.change($event)"
+                [editable]="editable()"
+                [mayRead]="mayRead()"
+                (changed)="change($event)"
+                (readAgain)="readAgain($event)"
               />
-            }
-          </div>
-        }
-      </div>
+              @if (words.dictionary()) {
+                <ts-dictionary-editor
+                  [entry]="words.entry(row.profile.column)"
+                  [column]="row.defined"
+                  [editable]="words.editable()"
+                  (changed)="words.change($event)"
+                />
+              }
+            </div>
+          }
+        </div>
+      }
       @if (words.dictionary()) {
         <section aria-labelledby="dictionary">
           <h3 id="dictionary">Data dictionary</h3>
@@ -221,10 +230,14 @@ export class ColumnsPage {
     () => this.modelId(),
     () => this.sampleId(),
   );
+  protected readonly unread = unreadOf(this.sample);
   protected readonly columns = columnsOf(
     () => this.modelId(),
     () => this.sampleId(),
   );
+  protected readonly finding = computed(() => (this.columns.hasValue() && !this.unread() ? this.columns.value().finding : null));
+  /** Before that there is neither draft nor dictionary to ask for. */
+  private readonly isRead = computed(() => this.sample.hasValue() && this.unread() === null);
   readonly unsaved = computed(() => this.draft.unsaved() || this.words.unsaved());
   protected readonly editable = computed(() => this.sample.hasValue() && this.sample.value().abilities.includes('define'));
   protected readonly mayRead = computed(() => this.sample.hasValue() && this.sample.value().abilities.includes('read-file'));
@@ -286,6 +299,7 @@ export class ColumnsPage {
     warnBeforeUnload(() => this.unsaved());
     effect(() => {
       const [modelId, sampleId] = [this.modelId(), this.sampleId()];
+      if (!this.isRead()) return;
       untracked(() => {
         void this.draft.open(modelId, sampleId);
         void this.words.open(modelId, sampleId);

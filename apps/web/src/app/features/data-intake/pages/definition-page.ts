@@ -21,11 +21,22 @@ import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { Tombstone } from '../../../ui/tombstone';
 import { DraftStore } from '../data/draft-store';
-import { type ColumnProfile, Samples, balanceOf, columnsOf, definitionsOf, draftBalanceOf, oneSample, protectedOf } from '../data/samples';
+import {
+  type ColumnProfile,
+  Samples,
+  balanceOf,
+  columnsOf,
+  definitionsOf,
+  draftBalanceOf,
+  oneSample,
+  protectedOf,
+  unreadOf,
+} from '../data/samples';
 import { BalanceTable } from '../ui/balance-table';
 import { DraftBalance } from '../ui/draft-balance';
 import { ExclusionList } from '../ui/exclusion-list';
 import { countsFinding } from '../ui/findings';
+import { NotReadYet } from '../ui/not-read-yet';
 import { OutcomeEditor } from '../ui/outcome-editor';
 import { PartitionEditor } from '../ui/partition-editor';
 import { PartitionTable } from '../ui/partition-table';
@@ -48,6 +59,7 @@ import { WaterfallFigure } from '../ui/waterfall-figure';
     DecisionNotice,
     DraftBalance,
     ExclusionList,
+    NotReadYet,
     OutcomeEditor,
     PageHeader,
     PartitionEditor,
@@ -84,6 +96,7 @@ export class DefinitionPage {
   private readonly model = () => this.modelId();
   private readonly id = () => this.sampleId();
   protected readonly sample = oneSample(this.model, this.id);
+  protected readonly unread = unreadOf(this.sample);
   protected readonly columns = columnsOf(this.model, this.id);
   protected readonly definitions = definitionsOf(this.model, this.id);
   protected readonly confirming = new Task();
@@ -95,6 +108,8 @@ export class DefinitionPage {
   protected readonly runTitle = computed(() => runTitles[this.run()?.kind ?? ''] ?? 'The run');
   readonly unsaved = this.draft.unsaved;
 
+  /** Before that there is no draft to ask for. */
+  private readonly isRead = computed(() => this.sample.hasValue() && this.unread() === null);
   protected readonly editable = computed(() => this.sample.hasValue() && this.sample.value().abilities.includes('define'));
   protected readonly profiles = computed(() => (this.columns.hasValue() ? this.columns.value().columns : []));
   protected readonly latest = computed(() =>
@@ -120,6 +135,7 @@ export class DefinitionPage {
     return !busy && this.draft.saveState() === 'saved' && this.draft.check()?.counts != null;
   });
   protected readonly finding = computed(() => {
+    if (this.unread()) return null;
     const counts = this.draft.check()?.counts ?? (this.changing() ? null : this.latest()?.counts);
     if (counts) return countsFinding(counts);
     const problems = this.draft.problems().length;
@@ -132,7 +148,7 @@ export class DefinitionPage {
     warnBeforeUnload(() => this.draft.unsaved());
     effect(() => {
       const [modelId, sampleId] = [this.modelId(), this.sampleId()];
-      untracked(() => void this.draft.open(modelId, sampleId));
+      if (this.isRead()) untracked(() => void this.draft.open(modelId, sampleId));
     });
     // Counts by itself once everything that the columns can tell is settled.
     effect(() => {
@@ -150,6 +166,7 @@ export class DefinitionPage {
       .subscribe((run) => {
         this.definitions.reload();
         this.sample.reload();
+        if (run.kind === 'sample.read') this.columns.reload();
         this.draftBalance.reload();
         if (run.kind === 'sample.confirm' && run.state === 'succeeded') this.changing.set(false);
         void this.current.reload();

@@ -165,6 +165,15 @@ describe('QualityPage', () => {
     expect(shown()).toContain('It is made already.');
   });
 
+  it('says of a file that has not been read that it has not, with the way to its reading', async () => {
+    server.expectOne(address).flush({ id: 's1', modelId: 'm1', fileName: 'applicants.csv', rows: null, erased: null });
+    server.expectOne(`${address}/quality`).flush({ ...state, report: null, definitionId: null, finding: 'The report needs a confirmed definition.', abilities: [] });
+    await settled();
+    expect(page().querySelector('ts-empty .title')?.textContent).toBe('The file has not been read yet');
+    expect(page().querySelector('ts-empty a')?.getAttribute('href')).toBe('/models/m1/sample/s1/reading');
+    expect(shown()).not.toContain('The report needs a confirmed definition.');
+  });
+
   it('says that the report could not be read', async () => {
     server.expectOne(address).flush({ fileName: 'applicants.csv', erased: null });
     server.expectOne(`${address}/quality`).flush({ title: 'Gone', status: 404, code: 'not-found', detail: 'There is no such sample.' }, { status: 404, statusText: 'Not found' });

@@ -29,9 +29,18 @@ import { ProblemList } from '../../../ui/problem-list';
 import { RunProgress } from '../../../ui/run-progress';
 import { SortInAddress } from '../../../ui/sort-in-address';
 import { Tombstone } from '../../../ui/tombstone';
-import { type ColumnQuality, type ColumnQualityDetail, Samples, columnQualityOf, oneSample, qualityOf } from '../data/samples';
+import {
+  type ColumnQuality,
+  type ColumnQualityDetail,
+  Samples,
+  columnQualityOf,
+  oneSample,
+  qualityOf,
+  unreadOf,
+} from '../data/samples';
 import { plain } from '../ui/findings';
 import { ColumnQualityFigures } from '../ui/column-quality';
+import { NotReadYet } from '../ui/not-read-yet';
 import { type AskedAnswer, QualityFlags } from '../ui/quality-flags';
 import { type MonthValue, QualityMonths } from '../ui/quality-months';
 import { flagTitle, waits } from '../ui/quality-words';
@@ -52,6 +61,7 @@ import { SampleSteps } from '../ui/sample-steps';
     DenseTable,
     EmptyState,
     MomentPipe,
+    NotReadYet,
     PageHeader,
     ProblemList,
     QualityFlags,
@@ -78,13 +88,14 @@ export class QualityPage {
     () => this.modelId(),
     () => this.sampleId(),
   );
+  protected readonly unread = unreadOf(this.sample);
   protected readonly state = qualityOf(
     () => this.modelId(),
     () => this.sampleId(),
   );
   protected readonly report = computed(() => (this.state.hasValue() ? this.state.value().report : null));
   protected readonly abilities = computed(() => (this.state.hasValue() ? this.state.value().abilities : []));
-  protected readonly finding = computed(() => (this.state.hasValue() ? this.state.value().finding : null));
+  protected readonly finding = computed(() => (this.state.hasValue() && !this.unread() ? this.state.value().finding : null));
   protected readonly roles = computed(
     () => new Map((this.report()?.columns ?? []).map(({ column, role }) => [column, role] as const)),
   );

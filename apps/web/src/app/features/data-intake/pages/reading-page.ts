@@ -51,7 +51,7 @@ import { SampleSteps } from '../ui/sample-steps';
         [modelId]="modelId()"
         [sampleId]="sampleId()"
         [fileName]="sample.value()?.fileName ?? ''"
-        [open]="open()"
+        [read]="isRead()"
       />
       <ts-page-header title="Reading choices" [finding]="finding()">
         @if (mayDiscard()) {
@@ -142,9 +142,7 @@ export class ReadingPage {
     return run !== null && !['succeeded', 'failed', 'cancelled'].includes(run.state);
   });
   protected readonly busy = computed(() => this.underWay() || this.looking.busy() || this.starting.busy());
-  protected readonly open = computed(() =>
-    this.sample.hasValue() && this.sample.value().rows !== null ? ['reading', 'columns', 'definition', 'quality'] : ['reading'],
-  );
+  protected readonly isRead = computed(() => this.sample.hasValue() && this.sample.value().rows !== null);
   protected readonly finding = computed(() => {
     const preview = this.preview();
     if (this.sample.hasValue() && this.sample.value().erased) return 'The rows of this file were erased.';

@@ -12,7 +12,7 @@ import { RouterLink, RouterLinkActive } from '@angular/router';
       <span class="file" [title]="fileName()">{{ fileName() }}</span>
       <div class="pages">
         @for (step of steps; track step.path) {
-          @if (open().includes(step.path)) {
+          @if (read() || step.path === 'reading') {
             <a
               [routerLink]="['/models', modelId(), 'sample', sampleId(), step.path]"
               routerLinkActive="here"
@@ -68,8 +68,8 @@ export class SampleSteps {
   readonly modelId = input.required<string>();
   readonly sampleId = input.required<string>();
   readonly fileName = input('');
-  /** Steps that can be visited now. */
-  readonly open = input.required<readonly string[]>();
+  /** Whether the file has been read: before that there is nothing to see beyond its reading. */
+  readonly read = input.required<boolean>();
   protected readonly steps = [
     { path: 'reading', label: 'Reading' },
     { path: 'columns', label: 'Columns' },
