@@ -158,4 +158,14 @@ describe('ColumnsPage', () => {
       expect(texts('ts-empty')).toEqual([]);
     });
   });
+
+  it('says once that a sample is not there', async () => {
+    const gone = { title: 'Not found', status: 404, code: 'not-found', detail: 'It does not exist, or it is not open to you.' };
+    for (const path of ['', '/columns']) {
+      server.expectOne(`${address}${path}`).flush(gone, { status: 404, statusText: 'Not Found' });
+      await settled();
+    }
+    expect(texts('.problem .title')).toEqual(['Not found']);
+    server.verify();
+  });
 });

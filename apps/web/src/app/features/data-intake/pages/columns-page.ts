@@ -68,7 +68,7 @@ interface Row {
       <ts-sample-steps
         [modelId]="modelId()"
         [sampleId]="sampleId()"
-        [fileName]="sample.value()?.fileName ?? ''"
+        [fileName]="sampleValue()?.fileName ?? ''"
         [read]="unread() === null"
       />
       <ts-page-header title="Columns" [finding]="finding()">
@@ -83,7 +83,7 @@ interface Row {
       </ts-page-header>
       @if (unread(); as waiting) {
         <ts-not-read-yet [sample]="waiting" />
-      } @else if (sample.value()?.erased; as erased) {
+      } @else if (sampleValue()?.erased; as erased) {
         <ts-tombstone [erased]="erased"
           >Profiles stay, without values that fewer than five rows hold; roles and labels are read and no longer
           changed.</ts-tombstone
@@ -230,6 +230,8 @@ export class ColumnsPage {
     () => this.modelId(),
     () => this.sampleId(),
   );
+  /** Null while it is asked for, and where it cannot be read: the resource's own value throws then. */
+  protected readonly sampleValue = computed(() => (this.sample.hasValue() ? this.sample.value() : null));
   protected readonly unread = unreadOf(this.sample);
   protected readonly columns = columnsOf(
     () => this.modelId(),

@@ -16,10 +16,13 @@ describe('DefinitionPage', () => {
   const texts = (selector: string): string[] =>
     [...page().querySelectorAll(selector)].map(({ textContent }) => textContent.replace(/\s+/g, ' ').trim());
 
-  async function answer(path: string, body: object): Promise<void> {
-    server.expectOne(`${address}${path}`).flush(body);
+  async function settled(): Promise<void> {
     await new Promise((resolve) => setTimeout(resolve));
     fixture.detectChanges();
+  }
+  async function answer(path: string, body: object): Promise<void> {
+    server.expectOne(`${address}${path}`).flush(body);
+    await settled();
   }
 
   beforeEach(() => {
@@ -57,6 +60,15 @@ describe('DefinitionPage', () => {
     expect(page().querySelector('ts-empty a')?.getAttribute('href')).toBe('/models/m1/sample/s1/reading');
     expect(texts('section, .problem, .finding')).toEqual([]);
     expect(texts('nav .pages a')).toEqual(['Reading']);
+    server.verify();
+  });
+
+  it('says once that a sample is not there', async () => {
+    const gone = { title: 'Not found', status: 404, code: 'not-found', detail: 'It does not exist, or it is not open to you.' };
+    for (const path of ['', '/columns', '/definitions'])
+      server.expectOne(`${address}${path}`).flush(gone, { status: 404, statusText: 'Not Found' });
+    await settled();
+    expect(texts('.problem .title')).toEqual(['Not found']);
     server.verify();
   });
 });

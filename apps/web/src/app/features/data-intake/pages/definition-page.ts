@@ -96,6 +96,8 @@ export class DefinitionPage {
   private readonly model = () => this.modelId();
   private readonly id = () => this.sampleId();
   protected readonly sample = oneSample(this.model, this.id);
+  /** Null while it is asked for, and where it cannot be read: the resource's own value throws then. */
+  protected readonly sampleValue = computed(() => (this.sample.hasValue() ? this.sample.value() : null));
   protected readonly unread = unreadOf(this.sample);
   protected readonly columns = columnsOf(this.model, this.id);
   protected readonly definitions = definitionsOf(this.model, this.id);

@@ -175,8 +175,8 @@ describe('QualityPage', () => {
   });
 
   it('says that the report could not be read', async () => {
-    server.expectOne(address).flush({ fileName: 'applicants.csv', erased: null });
-    server.expectOne(`${address}/quality`).flush({ title: 'Gone', status: 404, code: 'not-found', detail: 'There is no such sample.' }, { status: 404, statusText: 'Not found' });
+    for (const path of ['', '/quality'])
+      server.expectOne(`${address}${path}`).flush({ title: 'Gone', status: 404, code: 'not-found', detail: 'There is no such sample.' }, { status: 404, statusText: 'Not found' });
     await settled();
     expect(shown()).toContain('There is no such sample.');
     expect(await (await outside.getHarness(MatButtonHarness.with({ text: 'Try again' }))).isDisabled()).toBe(false);

@@ -88,6 +88,8 @@ export class QualityPage {
     () => this.modelId(),
     () => this.sampleId(),
   );
+  /** Null while it is asked for, and where it cannot be read: the resource's own value throws then. */
+  protected readonly sampleValue = computed(() => (this.sample.hasValue() ? this.sample.value() : null));
   protected readonly unread = unreadOf(this.sample);
   protected readonly state = qualityOf(
     () => this.modelId(),

@@ -93,6 +93,15 @@ describe('ReadingPage', () => {
     expect(read?.disabled).toBe(true);
   });
 
+  it('says that a sample is not there', async () => {
+    fixture.detectChanges();
+    const gone = { title: 'Not found', status: 404, code: 'not-found', detail: 'There is no such sample.' };
+    server.expectOne(address).flush(gone, { status: 404, statusText: 'Not Found' });
+    await settled();
+    expect(page().textContent).toContain('There is no such sample.');
+    server.verify();
+  });
+
   describe('of a file whose last reading found lines beyond the preview', () => {
     const clean: Preview = { ...preview, doubtful: { count: 0, lines: [] }, problems: [], looked: { records: 2, bytes: 10, whole: false } };
     const refusal = { code: 'ragged', message: 'Line 60002 has 1 field where the header has 2.', where: { line: 60_002 } };

@@ -50,7 +50,7 @@ import { SampleSteps } from '../ui/sample-steps';
       <ts-sample-steps
         [modelId]="modelId()"
         [sampleId]="sampleId()"
-        [fileName]="sample.value()?.fileName ?? ''"
+        [fileName]="sampleValue()?.fileName ?? ''"
         [read]="isRead()"
       />
       <ts-page-header title="Reading choices" [finding]="finding()">
@@ -58,7 +58,7 @@ import { SampleSteps } from '../ui/sample-steps';
           <button matButton type="button" (click)="discard()">Discard the file</button>
         }
       </ts-page-header>
-      @if (sample.value()?.erased; as erased) {
+      @if (sampleValue()?.erased; as erased) {
         <ts-tombstone [erased]="erased">How the file was read stays; it cannot be looked at or read again.</ts-tombstone>
       }
       <ts-problems [error]="sample.error()" />
@@ -76,7 +76,7 @@ import { SampleSteps } from '../ui/sample-steps';
           <ts-reading-form [choices]="view.choices" [reasons]="view.reasons" [disabled]="busy()" (changed)="look($event)" />
           <div class="ts-actions">
             <button matButton="filled" type="button" [disabled]="busy() || view.problems.length > 0" (click)="read()">
-              {{ sample.value()?.state === 'ready' ? 'Read the file again' : 'Read the file' }}
+              {{ sampleValue()?.state === 'ready' ? 'Read the file again' : 'Read the file' }}
             </button>
             @if (looking.busy()) {
               <span class="ts-second" role="status">Looking at the file</span>
@@ -91,7 +91,7 @@ import { SampleSteps } from '../ui/sample-steps';
       } @else if (looking.busy()) {
         <p class="ts-second" role="status">Looking at the file</p>
       }
-      @if (!mayRead() && sample.value()?.reading; as reading) {
+      @if (!mayRead() && sampleValue()?.reading; as reading) {
         <dl class="ts-pairs">
           <dt>Delimiter</dt>
           <dd>{{ signWords(reading.delimiter) }}</dd>
@@ -126,6 +126,8 @@ export class ReadingPage {
     () => this.modelId(),
     () => this.sampleId(),
   );
+  /** Null while it is asked for, and where it cannot be read: the resource's own value throws then. */
+  protected readonly sampleValue = computed(() => (this.sample.hasValue() ? this.sample.value() : null));
   protected readonly preview = signal<Preview | null>(null);
   protected readonly looking = new Task();
   protected readonly starting = new Task();

@@ -75,7 +75,7 @@ export class FitPage {
   protected readonly path = this.fits.path(() => (this.fit()?.state === 'ready' ? this.fitId() : null));
   private readonly list = this.fits.list(() => this.fit()?.modelId ?? this.current.id() ?? '');
 
-  private readonly pathValue = computed(() => (this.path.hasValue() ? this.path.value() : null));
+  protected readonly pathValue = computed(() => (this.path.hasValue() ? this.path.value() : null));
   protected readonly index = linkedSignal(() => {
     const path = this.pathValue();
     if (!path) return 0;
