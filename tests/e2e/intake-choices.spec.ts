@@ -2,6 +2,7 @@ import { writeFileSync } from 'node:fs';
 import type { Locator, Page } from '@playwright/test';
 import { pick } from '../support/browser';
 import { enterEmptyModel } from '../support/demo-places';
+import { narrow, wide } from '../support/page-inspection';
 import { expect, test } from '../support/rooms';
 
 /**
@@ -133,10 +134,21 @@ test('what the file does not say is asked, and the first rows follow each choice
   await pick(page, page, 'Encoding', 'UTF-8');
   const foreign = applicants.flatMap(({ town: name }, row) => (/[^ -~]/.test(name) ? [row + 2] : []));
   await expect(doubtful).toContainText(`${foreign.length} lines of the file are doubtful`);
-  const bad = doubtful.getByRole('region', { name: 'Doubtful lines of the file' }).locator('tbody').getByRole('row');
+  const listed = doubtful.getByRole('region', { name: 'Doubtful lines of the file' });
+  const bad = listed.locator('tbody').getByRole('row');
   expect(await bad.first().getByRole('rowheader').innerText()).toBe('4');
   expect(await cellsOf(bad.first())).toEqual(['3', 'not UTF-8', lines[3].replace('ø', '\\xF8')]);
   await expect(bad.nth(1)).toContainText('\\x8Cdmarsh');
+  // On a narrow screen the line stands below what is said of it, and nothing of it beyond the edge.
+  await page.setViewportSize(narrow);
+  const places = await bad
+    .first()
+    .getByRole('cell')
+    .evaluateAll((cells) => cells.map((cell) => cell.getBoundingClientRect().top));
+  expect(places[2]).toBeGreaterThan(places[1]);
+  const [content, room] = await listed.evaluate((region) => [region.scrollWidth, region.clientWidth]);
+  expect(content).toBeLessThanOrEqual(room);
+  await page.setViewportSize(wide);
   await expect(rows.nth(5)).not.toContainText('Œdmarsh');
   await expect(page.getByRole('alert')).toContainText(
     `line 4 Line 4 is not UTF-8; read as Windows-1252? ${foreign.length} lines in all: ${foreign.slice(0, 20).join(', ')}, …`,

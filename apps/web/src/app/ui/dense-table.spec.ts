@@ -20,6 +20,7 @@ interface Row {
       [rows]="rows()"
       [identify]="byId"
       [activatable]="true"
+      [stacks]="stacks()"
       (activate)="opened = $event.id"
     >
       <ng-template tsCell="name" [tsCellRows]="rows()" let-row
@@ -38,6 +39,7 @@ class Host {
     { id: 'b', name: '=high', points: 41.7512345 },
     { id: 'c', name: 'missing', points: null },
   ]);
+  readonly stacks = signal(false);
   readonly byId = (row: Row): string => row.id;
   opened: string | null = null;
 }
@@ -95,6 +97,18 @@ describe('DenseTable', () => {
     expect(fixture.componentInstance.opened).toBe('b');
     element.querySelectorAll<HTMLElement>('tbody tr')[2].click();
     expect(fixture.componentInstance.opened).toBe('c');
+  });
+
+  it('says that it is a table where its rows are laid out as blocks, with the names of figures in front of them', async () => {
+    const roles = (): (string | null)[] =>
+      [
+        ...element.querySelectorAll('table, thead, tbody, thead tr, thead th, tbody tr:first-child, tbody tr:first-child > *'),
+      ].map((part) => part.getAttribute('role'));
+    expect(new Set(roles())).toEqual(new Set([null]));
+    fixture.componentInstance.stacks.set(true);
+    await fixture.whenStable();
+    expect(roles()).toEqual(['table', 'rowgroup', 'row', 'columnheader', 'columnheader', 'rowgroup', 'row', 'rowheader', 'cell']);
+    expect(element.querySelector('td.number')?.getAttribute('data-label')).toBe('Points');
   });
 
   it('keeps only the rows in view once there are many, and says how many there are', async () => {

@@ -74,6 +74,11 @@ export class DenseTable<Row> {
   /** Rows set back, such as characteristics that were not kept. */
   readonly quiet = input<(row: Row) => boolean>();
   readonly selected = input<(row: Row) => boolean>();
+  /**
+   * On a narrow screen the cells of a row stand below each other, where texts are too long to be read across. For tables that nobody sorts, since there is
+   * no header to press; not while rows are windowed.
+   */
+  readonly stacks = input(false);
   /** What to say when there are no rows. */
   readonly empty = input('Nothing here yet.');
   readonly sort = model<TableSort | null>(null);
@@ -96,6 +101,7 @@ export class DenseTable<Row> {
   /** A table of figures, each with its name in front. */
   protected readonly figures = computed(() => this.columns().length > 1 && this.columns().slice(1).every(isNumeric));
   protected readonly windowed = computed(() => this.rows().length > windowFrom);
+  protected readonly stacked = computed(() => this.stacks() && !this.windowed());
   protected readonly first = computed(() => (this.windowed() ? Math.max(0, Math.floor(this.top() / rowHeight) - spare) : 0));
   protected readonly shown = computed(() => {
     if (!this.windowed()) return this.ordered();

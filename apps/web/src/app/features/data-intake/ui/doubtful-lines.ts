@@ -1,7 +1,7 @@
 import { ChangeDetectionStrategy, Component, computed, input } from '@angular/core';
 import type { DoubtfulLine, DoubtfulLines as Found } from '@tallystone/contracts/samples/reading';
 import { type Column } from '../../../ui/column';
-import { DenseTable } from '../../../ui/dense-table';
+import { CellTemplate, DenseTable } from '../../../ui/dense-table';
 import { count, plural } from '../../../ui/numbers';
 
 /** Where doubtful lines were looked for: in the whole file or a part of it under the choices shown, or when the file was last read. */
@@ -13,7 +13,7 @@ const parts = { file: 'of the file', part: 'of the part of the file that was loo
 @Component({
   selector: 'ts-doubtful-lines',
   changeDetection: ChangeDetectionStrategy.OnPush,
-  imports: [DenseTable],
+  imports: [CellTemplate, DenseTable],
   template: `
     @if (found().count > 0) {
       <section aria-label="Doubtful lines">
@@ -25,7 +25,16 @@ const parts = { file: 'of the file', part: 'of the part of the file that was loo
           [rows]="found().lines"
           [identify]="byLine"
           [copyable]="false"
-        />
+          [stacks]="true"
+        >
+          <ng-template tsCell="text" [tsCellRows]="found().lines" let-row>
+            @if (row.text === '') {
+              <span class="ts-second">(blank)</span>
+            } @else {
+              <code>{{ row.text }}{{ row.clipped ? '…' : '' }}</code>
+            }
+          </ng-template>
+        </ts-table>
       </section>
     }
   `,
@@ -34,6 +43,13 @@ const parts = { file: 'of the file', part: 'of the part of the file that was loo
       display: grid;
       grid-template-columns: minmax(0, 1fr);
       gap: 10px;
+    }
+    // Its blanks and quotes are what is looked at; where it has no blank it breaks all the same.
+    code {
+      display: inline-block;
+      font-family: ui-monospace, monospace;
+      white-space: pre-wrap;
+      overflow-wrap: anywhere;
     }
   `,
 })
@@ -55,13 +71,7 @@ export class DoubtfulLines {
     { key: 'line', label: 'Line', kind: 'count', value: ({ line }) => line },
     { key: 'record', label: 'Record', kind: 'count', value: ({ record }) => record, format: ({ record }) => (record === null ? 'header' : count(record)) },
     { key: 'doubt', label: 'What is doubtful', value: ({ doubts }) => doubts.join('; '), width: 40 },
-    {
-      key: 'text',
-      label: 'The line as it stands',
-      value: ({ text }) => text,
-      format: ({ text, clipped }) => (text === '' ? '(blank)' : clipped ? `${text}…` : text),
-      width: 80,
-    },
+    { key: 'text', label: 'The line as it stands', value: ({ text }) => text, width: 80 },
   ]; // prettier-ignore
   protected readonly byLine = ({ line }: DoubtfulLine): string => String(line);
 }
