@@ -2,12 +2,11 @@ import type { ProblemDetails, ProblemItem } from '@tallystone/contracts/problems
 import type { Run } from '@tallystone/contracts/runs/schema';
 import type { ColumnList } from '@tallystone/contracts/samples/columns';
 import type { Preview } from '@tallystone/contracts/samples/reading';
-import { stringify } from 'csv-stringify/sync';
-import { parse } from 'csv-parse/sync';
 import fc from 'fast-check';
 import { expect } from 'vitest';
 import { deriveKey } from '../../server/src/config/keys';
 import { hashText } from '../../server/src/profiling/personal';
+import { patience, readByOracle, wildBytes, wildTables, wildTexts } from '../../server/src/reading/testing/wild-files';
 import { openSample } from '../../server/src/storage/columnStore';
 import type { IntakeServer, Visitor } from './intake';
 
@@ -16,8 +15,6 @@ export type Outcome =
   | { readonly refused: readonly ProblemItem[] }
   | { readonly refused: null; readonly header: readonly string[]; readonly rows: readonly (readonly string[])[] };
 
-/** Longest that a small file may take: a hang is a failure, a busy machine is not. */
-const patience = 5000;
 /** A person and a model of their own for so many files: what one session may ask in a minute is bounded, and the list of samples is asked for each. */
 const filesOfModel = 50;
 
@@ -110,61 +107,31 @@ function withPlaces(problems: readonly ProblemItem[]): readonly ProblemItem[] {
   return problems;
 }
 
-const cell = fc.oneof(
-  fc.string({ unit: 'grapheme', maxLength: 12 }),
-  fc.constantFrom('', ' ', '"', '""', ',', '\n', '\r\n', '\r', '\t', ' a ', '1e309', '-', "'"),
-);
-const table = fc
-  .integer({ min: 1, max: 5 })
-  .chain((width) => fc.array(fc.array(cell, { minLength: width, maxLength: width }), { minLength: 1, maxLength: 12 }));
-const anything = fc
-  .array(fc.constantFrom('a', '1', ' ', ',', '"', '\n', '\r\n', '\r', 'é', '\0', '\t'), { maxLength: 60 })
-  .map((parts) => parts.join(''));
-/** Lines of two fields, most of them proper. */
-const field = fc.oneof(
-  { weight: 4, arbitrary: fc.constantFrom('a', '1', '', ' ', 'é', '"a,b"', '"a""b"', '"a\nb"', ' "a"', 'a"b') },
-  { weight: 1, arbitrary: fc.constantFrom('"', '\0', ',', '"a"b', '\r') },
-);
-const lines = fc
-  .array(fc.tuple(field, field), { minLength: 1, maxLength: 8 })
-  .map((rows) => `${rows.map((row) => row.join(',')).join('\n')}\n`);
-const wild = fc.oneof(anything, lines);
 const stated = { encoding: 'utf-8', delimiter: ',', trim: false, decimal: '.', thousands: null, missing: [] };
 
-/** Generated tables come back to the letter, whatever is in them but NUL and the sign for a lost character, which are refused. */
+/** Generated tables come back to the letter. */
 export async function generatedTables(reader: CorpusReader, runs: number): Promise<void> {
   await fc.assert(
-    fc.asyncProperty(table, fc.constantFrom(',', ';', '\t', '|'), fc.constantFrom('\n', '\r\n', '\r'), async (rows, delimiter, end) => {
-      const clean = rows.map((row) => row.map((text) => text.replaceAll(/[\0\ufffd]/g, '')));
-      const header = clean[0].map((_, index) => `c${index}`);
-      const bytes = Buffer.from(stringify([header, ...clean], { delimiter, record_delimiter: end, quoted: true }));
+    fc.asyncProperty(wildTables, async ({ bytes, delimiter, end, header, rows }) => {
       // Blank lines below a header are no rows.
       fc.pre(bytes.toString().slice(bytes.indexOf(end)).trim() !== '');
       const outcome = await reader.read(bytes, { ...stated, delimiter });
       if (outcome.refused) throw new Error(`A proper table is refused: ${JSON.stringify(outcome.refused)}`);
-      expect(outcome).toMatchObject({ header, rows: reader.asStored(clean) });
+      expect(outcome).toMatchObject({ header, rows: reader.asStored(rows) });
     }),
     { numRuns: runs },
-  ); // prettier-ignore
+  );
 }
 
 /** Files of any characters end in problems, or as csv-parse reads them. Returns how many were read. */
 export async function generatedTexts(reader: CorpusReader, runs: number): Promise<number> {
   let accepted = 0;
   await fc.assert(
-    fc.asyncProperty(wild, fc.boolean(), async (text, trim) => {
-      const outcome = await reader.read(Buffer.from(`x,y\n${text}`), { ...stated, trim });
+    fc.asyncProperty(wildTexts, fc.boolean(), async (text, trim) => {
+      const outcome = await reader.read(Buffer.from(text), { ...stated, trim });
       if (outcome.refused) return;
       accepted++;
-      const oracle: string[][] = parse(`x,y\n${text}`, {
-        trim,
-        record_delimiter: ['\r\n', '\n', '\r'],
-        relax_column_count: true,
-        relax_quotes: true,
-        skip_empty_lines: false,
-      });
-      while (oracle.length > 0 && oracle[oracle.length - 1].length === 1 && oracle[oracle.length - 1][0] === '') oracle.pop();
-      expect(outcome.rows).toEqual(reader.asStored(oracle.slice(1)));
+      expect(outcome.rows).toEqual(reader.asStored(readByOracle(text, trim)));
     }),
     { numRuns: runs },
   );
@@ -174,8 +141,8 @@ export async function generatedTexts(reader: CorpusReader, runs: number): Promis
 /** Files of any bytes, under the choices that the preview proposes. */
 export async function generatedBytes(reader: CorpusReader, runs: number): Promise<void> {
   await fc.assert(
-    fc.asyncProperty(fc.uint8Array({ maxLength: 200 }), async (bytes) => {
-      const outcome = await reader.read(Buffer.from(bytes));
+    fc.asyncProperty(wildBytes, async (bytes) => {
+      const outcome = await reader.read(bytes);
       if (outcome.refused === null) for (const row of outcome.rows) expect(row).toHaveLength(outcome.header.length);
     }),
     { numRuns: runs },
