@@ -37,6 +37,6 @@ export function qualityFinding(columns: readonly ColumnProfile[], count: number,
   if (stopped > 0) parts.push(`${stopped} ${stopped === 1 ? 'is' : 'are'} set to not used or kept as hashes`);
   if (looked > 0) parts.push(`${looked} deserve${looked === 1 ? 's' : ''} a look`);
   if (duplicateRows > 0) parts.push(`${thin(duplicateRows)} row${duplicateRows === 1 ? ' repeats' : 's repeat'} an earlier one`);
-  const whole = `${thin(count)} rows and ${columns.length} columns`;
+  const whole = `${thin(count)} row${count === 1 ? '' : 's'} and ${columns.length} column${columns.length === 1 ? '' : 's'}`;
   return parts.length === 0 ? `${whole}; nothing stands out.` : `${whole}: ${parts.join(', ')}.`;
 }

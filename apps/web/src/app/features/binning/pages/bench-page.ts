@@ -54,6 +54,7 @@ import { type Measure, type Span, asMeasure, asSpan } from '../ui/months-view';
 import { OutOfTimeCover } from '../ui/out-of-time-cover';
 import { PartitionFigures } from '../ui/partition-figures';
 import { Places } from '../ui/places';
+import { PooledNote } from '../ui/pooled-note';
 import type { ReclassAnswer, ReclassQuestion } from '../ui/reclass-dialog';
 import type { StaleAnswer, StaleQuestion } from '../ui/stale-dialog';
 
@@ -77,6 +78,7 @@ import type { StaleAnswer, StaleQuestion } from '../ui/stale-dialog';
     PageHeader,
     PartitionFigures,
     Places,
+    PooledNote,
     ProblemList,
     Tombstone,
   ],
