@@ -1,5 +1,5 @@
 import { ChangeDetectionStrategy, Component, computed, input } from '@angular/core';
-import type { Fine } from '@tallystone/contracts/binnings/bins';
+import type { FineClasses } from '@tallystone/numeric/bench';
 import { count, plural } from '../../../ui/numbers';
 
 /** How many names are listed; of the others the number stands. */
@@ -32,7 +32,7 @@ const most = 200;
   `,
 })
 export class PooledNote {
-  readonly fine = input.required<Pick<Fine, 'pooled' | 'categories'>>();
+  readonly fine = input.required<Pick<FineClasses, 'pooled' | 'categories'>>();
   protected readonly pooled = computed(() => this.fine().pooled ?? null);
   protected readonly words = computed(() => {
     const { pooled, categories } = this.fine();
