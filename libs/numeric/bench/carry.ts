@@ -28,14 +28,16 @@ type Tried = { readonly kind: EditKind | 'kept own'; readonly what: string; read
 
 /**
  * Values at which the fine classes must be split before edits of a numeric characteristic can be carried over: new places of cuts that development has
- * values on both sides of.
- * @example carriedEdges(fine, edits) // [32.5]
+ * values on both sides of, and every cut of bins that were put in place of others as a whole. Those of the latest edits stand first: where there is no
+ * room for all of them, they say more of what the bins came to.
+ * @example carriedEdges(fine, edits) // [32.5, 27]
  */
 export function carriedEdges(fine: FineClasses, edits: readonly EarlierEdit[]): number[] {
-  const wanted = edits.flatMap((edit) =>
-    edit.before.kind === 'numeric' && edit.after.kind === 'numeric' ? gained(edit.before, edit.after) : [],
-  );
-  return [...new Set(wanted)].filter((edge) => separates(fine, edge) && !fine.edges.includes(edge)).sort((a, b) => a - b);
+  const wanted = [...edits].reverse().flatMap(({ kind, before, after }) => {
+    if (before.kind !== 'numeric' || after.kind !== 'numeric') return [];
+    return replacesAll(kind, before, after) ? after.edges : gained(before, after);
+  });
+  return [...new Set(wanted)].filter((edge) => separates(fine, edge) && !fine.edges.includes(edge));
 }
 
 /**
@@ -70,7 +72,7 @@ function attempt(fine: FineClasses, bins: Bins, edit: EarlierEdit): Tried {
     return moveMissing(bins, place, labelOf(fine, bins, place)) ?? 'Missing values are there already.';
   }
   if (bins.kind === 'numeric' && edit.before.kind === 'numeric' && edit.after.kind === 'numeric')
-    return numeric(fine, bins, edit.before, edit.after);
+    return numeric(fine, bins, edit.kind, edit.before, edit.after);
   if (bins.kind === 'categorical' && edit.before.kind === 'categorical' && edit.after.kind === 'categorical')
     return categorical(fine, bins, edit.kind, edit.before, edit.after);
   return 'It was of another kind.';
@@ -79,15 +81,29 @@ function attempt(fine: FineClasses, bins: Bins, edit: EarlierEdit): Tried {
 const gained = (before: NumericBins, after: NumericBins): number[] => after.edges.filter((edge) => !before.edges.includes(edge));
 const separates = ({ range }: FineClasses, edge: number): boolean => range !== null && edge > range[0] && edge <= range[1];
 
-function numeric(fine: FineClasses, bins: NumericBins, before: NumericBins, after: NumericBins): Tried {
-  const added = gained(before, after);
-  const removed = gained(after, before);
-  if (added.length > 1 || removed.length > 1) return wholly(fine, bins, after);
-  const [to] = added;
-  const [from] = removed;
+/** Whether an edit puts whole bins in place of others, rather than changing one thing about them. */
+function replacesAll(kind: EarlierEdit['kind'], before: NumericBins, after: NumericBins): boolean {
+  return kind === 'kept own' || gained(before, after).length > 1 || gained(after, before).length > 1;
+}
+
+/** Said where a fine class would have to be split and cannot be. */
+const noRoom = (fine: FineClasses, edge: number): string =>
+  `There is no room for a cut at ${edge}: it lies inside a fine class, and there are ${fine.edges.length + 1} of them, the most there can be.`;
+
+function numeric(
+  fine: FineClasses,
+  bins: NumericBins,
+  kind: EarlierEdit['kind'],
+  before: NumericBins,
+  after: NumericBins,
+): Tried {
+  if (replacesAll(kind, before, after)) return wholly(fine, bins, after);
+  const [to] = gained(before, after);
+  const [from] = gained(after, before);
   if (to !== undefined) {
     if (!separates(fine, to)) return `Development has values on one side of ${to} only.`;
     if (bins.edges.includes(to)) return `There is a cut at ${to} already.`;
+    if (!fine.edges.includes(to)) return noRoom(fine, to);
   }
   if (from === undefined) return (to !== undefined && addCut(fine, bins, to)) || 'Nothing in it applies to these bins.';
   const cut = cutFor(bins, before, from);
@@ -113,6 +129,8 @@ function wholly(fine: FineClasses, bins: NumericBins, after: NumericBins): Tried
   const edges = after.edges.filter((edge) => separates(fine, edge));
   if (edges.length === 0) return 'None of its cuts has values on both sides.';
   if (edges.join() === bins.edges.join()) return 'The cuts are there already.';
+  const inside = edges.find((edge) => !fine.edges.includes(edge));
+  if (inside !== undefined) return noRoom(fine, inside);
   const own = (place: Place): Place => (typeof place === 'number' && place > edges.length ? 'own' : place);
   return {
     kind: 'kept own',
