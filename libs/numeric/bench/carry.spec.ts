@@ -13,9 +13,9 @@ const earlier: NumericBins = { kind: 'numeric', edges: [20, 40], special: ['own'
 const here: NumericBins = { kind: 'numeric', edges: [10, 30, 50], special: ['own', 'own'], missing: 'own' };
 const made = (before: Bins, edit: EditOf<Bins> | null): EarlierEdit => {
   if (!edit) throw new Error('The edit cannot be done');
-  return { kind: edit.kind, before, after: edit.bins, special: fine.special };
+  return { kind: edit.kind, what: edit.what, before, after: edit.bins };
 };
-const carried = (bins: Bins, ...edits: EarlierEdit[]) => carryEdits(fine, bins, edits);
+const carried = (bins: Bins, ...edits: EarlierEdit[]) => carryEdits(fine, bins, { fine, edits });
 
 describe('edits of an earlier sample', () => {
   it('move the cut that stands for theirs to the same value', () => {
@@ -52,7 +52,6 @@ describe('edits of an earlier sample', () => {
       [made(earlier, addCut(far, earlier, 150)), /one side of 150/],
       [made(earlier, addCut(fine, earlier, 30)), /already/],
       [made({ ...earlier, edges: [31, 35, 45] }, { kind: 'bins merged', what: '', bins: { ...earlier, edges: [31, 45] } }), /No cut lies/],
-      [{ ...made(earlier, moveSpecial(fine, earlier, 0, 1, '')), special: ['unknown', 'refused'] }, /no special code/],
       [made({ kind: 'categorical', groups: [['a']], special: [], missing: 'own', unseen: 'neutral' }, { kind: 'missing moved', what: '', bins: { kind: 'categorical', groups: [['a']], special: [], missing: 0, unseen: 'neutral' } }), /categorical then/],
     ]; // prettier-ignore
     for (const [edit, why] of cases) {
@@ -60,14 +59,22 @@ describe('edits of an earlier sample', () => {
       expect(steps).toEqual([{ kept: false, why: expect.stringMatching(why) as string }]);
       expect(bins).toBe(here);
     }
+    const other = { ...fine, special: ['unknown', 'refused'] };
+    const unknown = made(earlier, moveSpecial(other, earlier, 0, 1, ''));
+    expect(carryEdits(fine, here, { fine: other, edits: [unknown] }).steps).toEqual([
+      { kept: false, why: '"unknown" is no special code here.' },
+    ]);
     const bare = { ...fine, development: slots([10, 20, 30, 40, 50, 60, 5, 5, 5], [30, 25, 20, 15, 10, 0, 5, 5, 5]) };
     const split = made(earlier, addCut(fine, earlier, 50));
-    expect(carryEdits(bare, earlier, [split]).steps[0]).toMatchObject({ kept: false, why: /without a good or without a bad/ });
+    expect(carryEdits(bare, earlier, { fine, edits: [split] }).steps[0]).toMatchObject({
+      kept: false,
+      why: /without a good or without a bad/,
+    });
   });
 
   it('follow a special code by its label', () => {
     const turned = { ...fine, special: ['refused', 'no record'] };
-    const { bins } = carryEdits(turned, here, [made(earlier, moveSpecial(fine, earlier, 0, 2, ''))]);
+    const { bins } = carryEdits(turned, here, { fine, edits: [made(earlier, moveSpecial(fine, earlier, 0, 2, ''))] });
     expect(bins.special).toEqual(['own', 3]);
   });
 
@@ -96,10 +103,12 @@ describe('edits of categories', () => {
   };
   const gone: FineClasses = { ...home, categories: ['rent', 'owner', 'hostel', 'ship'] };
   const now: CategoricalBins = { ...start, groups: [['owner', 'ship'], ['rent'], ['hostel']] };
-  const of = (edit: EditOf<CategoricalBins> | null, before = start): EarlierEdit => ({ ...made(before, edit), special: [] });
+  const of = (edit: EditOf<CategoricalBins> | null, before = start): EarlierEdit => made(before, edit);
+
+  const carryOver = (bins: Bins, ...edits: EarlierEdit[]) => carryEdits(gone, bins, { fine: home, edits });
 
   it('group, set apart and join what is there', () => {
-    const { bins, steps } = carryEdits(gone, now, [of(mergeGroups(home, start, 2, 3)), of(moveUnseen(start, 0, 'owner'))]);
+    const { bins, steps } = carryOver(now, of(mergeGroups(home, start, 2, 3)), of(moveUnseen(start, 0, 'owner')));
     expect(steps.map(({ kept }) => kept)).toEqual([true, true]);
     expect(bins).toMatchObject({
       groups: [
@@ -111,8 +120,7 @@ describe('edits of categories', () => {
     const pooled: CategoricalBins = { ...start, groups: [['owner'], ['parents', 'rent', 'hostel']] };
     const apart = of(groupCategories(home, pooled, ['hostel'], 'new'), pooled);
     expect(
-      carryEdits(
-        gone,
+      carryOver(
         {
           ...now,
           groups: [
@@ -120,19 +128,18 @@ describe('edits of categories', () => {
             ['rent', 'hostel'],
           ],
         },
-        [apart],
+        apart,
       ).steps[0],
     ).toMatchObject({ kept: true, what: 'Set hostel apart' });
   });
 
   it('are not made where their categories are gone or together already', () => {
-    expect(carryEdits(gone, now, [of(mergeGroups(home, start, 1, 2))]).steps[0]).toMatchObject({
+    expect(carryOver(now, of(mergeGroups(home, start, 1, 2))).steps[0]).toMatchObject({
       kept: false,
       why: /Fewer than two/,
     });
     expect(
-      carryEdits(
-        gone,
+      carryOver(
         {
           ...now,
           groups: [
@@ -140,7 +147,7 @@ describe('edits of categories', () => {
             ['rent', 'hostel'],
           ],
         },
-        [of(mergeGroups(home, start, 2, 3))],
+        of(mergeGroups(home, start, 2, 3)),
       ).steps[0],
     ).toMatchObject({
       kept: false,

@@ -40,7 +40,7 @@ export function groupCategories(
   );
   if (target === 'new') left.push(known);
   else left[target] = [...left[target], ...known.filter((category) => !left[target].includes(category))];
-  const names = listed(known);
+  const names = listed(target === 'new' ? known : known.filter((category) => !bins.groups[target].includes(category)));
   return {
     kind: target === 'new' ? 'category set apart' : 'categories grouped',
     what: target === 'new' ? `Set ${names} apart` : `Grouped ${names} with ${listed(bins.groups[target])}`,
@@ -98,7 +98,7 @@ export function moveUnseen(bins: CategoricalBins, place: 'neutral' | number, lab
  */
 function rebuilt(fine: FineClasses, bins: CategoricalBins, groups: readonly (readonly string[])[]): CategoricalBins {
   const kept = groups.filter((group) => group.length > 0);
-  const ordered = riskOrder(fine, kept).map((index) => inOrder(fine, kept[index]));
+  const ordered = riskOrder(fine, kept).map((index) => asListed(fine, kept[index]));
   const follow = (old: number): number => {
     const anchor = groups[old]?.[0] ?? bins.groups[old][0];
     return ordered.findIndex((group) => group.includes(anchor));
@@ -113,8 +113,11 @@ function rebuilt(fine: FineClasses, bins: CategoricalBins, groups: readonly (rea
   };
 }
 
-/** Categories of a group as the sample lists them, so that equal groups are equal lists. */
-function inOrder(fine: FineClasses, group: readonly string[]): string[] {
+/**
+ * Categories of a group as the sample lists them, so that equal groups are equal lists.
+ * @example asListed(fine, ['other', 'rent']) // ['rent', 'other'] where the sample has more rows with rent
+ */
+export function asListed(fine: FineClasses, group: readonly string[]): string[] {
   const places = new Map(fine.categories.map((category, index) => [category, index]));
   return [...group].sort((a, b) => (places.get(a) ?? Infinity) - (places.get(b) ?? Infinity));
 }
@@ -123,7 +126,11 @@ function sameSet(group: readonly string[], set: ReadonlySet<string>): boolean {
   return group.length === set.size && group.every((category) => set.has(category));
 }
 
-function listed(categories: readonly string[]): string {
-  if (categories.length <= 3) return categories.join(', ');
-  return `${categories.slice(0, 2).join(', ')} and ${categories.length - 2} more`;
+/**
+ * Names in a sentence: all of a few, the first of many with how many more there are.
+ * @example listed(['owner', 'rent', 'parents', 'other']) // 'owner, rent and 2 more'
+ */
+export function listed(names: readonly string[], most = 3): string {
+  if (names.length <= most) return names.join(', ');
+  return `${names.slice(0, most - 1).join(', ')} and ${names.length - most + 1} more`;
 }

@@ -23,6 +23,24 @@ function incomes(rows: number, shift: number): string[] {
   return Array.from({ length: rows }, (_, row) => (1000 + ((row * 7919) % rows) + shift).toFixed(2));
 }
 
+/** Fine classes of the sample that edits were made on: parted at all of their cuts, with goods and bads in each. */
+function fineOf(edits: readonly EarlierEdit[]): Fine {
+  const edges = [...new Set(edits.flatMap(({ before, after }) => [...edgesOf(before), ...edgesOf(after)]))].sort((a, b) => a - b);
+  const counts = (each: number) => Array.from({ length: edges.length + 2 }, () => each);
+  const development = { rows: counts(80), goods: counts(60), bads: counts(20) };
+  return {
+    kind: 'numeric',
+    edges,
+    closed: 'left',
+    range: [0, 1e6],
+    categories: [],
+    special: [],
+    development,
+    holdOut: development,
+    outOfTime: null,
+  };
+}
+
 async function classed(values: string[], earlier: EarlierEdit[], constraints: object = {}) {
   const random = new Generator(11);
   const outcome = Uint8Array.from(values, (value) =>
@@ -36,7 +54,7 @@ async function classed(values: string[], earlier: EarlierEdit[], constraints: ob
       data,
       counted: { rows: values.length, partition: new Uint8Array(values.length).fill(DEVELOPMENT), outcome, weights: null },
       constraints: AskedConstraints.parse(constraints),
-      earlier,
+      earlier: { fine: fineOf(earlier), edits: earlier },
       months: null,
     },
     control,
@@ -46,8 +64,8 @@ async function classed(values: string[], earlier: EarlierEdit[], constraints: ob
 }
 
 const cuts = (...edges: number[]): NumericBins => ({ kind: 'numeric', edges, special: [], missing: 'own' });
-const edit = (kind: EarlierEdit['kind'], before: Bins, after: Bins): EarlierEdit => ({ kind, before, after, special: [] });
-const edgesOf = (bins: Bins): readonly number[] => (bins.kind === 'numeric' ? bins.edges : []);
+const edit = (kind: EarlierEdit['kind'], before: Bins, after: Bins): EarlierEdit => ({ kind, what: kind, before, after });
+const edgesOf = (bins: EarlierEdit['before']): readonly number[] => (bins.kind === 'numeric' ? bins.edges : []);
 /** Bins that the fine classes can tell apart: throws otherwise. */
 const countable = (fine: Fine, bins: Bins): number => binOfSlots(fine, bins).length;
 

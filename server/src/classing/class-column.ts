@@ -1,7 +1,7 @@
 import type { AskedConstraints, Bins, Constraints, Fine, SlotCounts } from '@tallystone/contracts/binnings/bins';
 import type { MonthlyCounts } from '@tallystone/contracts/binnings/months';
 import type { BinnedCharacteristic, DataReading } from '@tallystone/contracts/specification/types';
-import { type CarriedStep, type EarlierEdit, carriedEdges, carryEdits } from '@tallystone/numeric/bench';
+import { type CarriedStep, type EarlierEdits, carriedEdges, carryEdits } from '@tallystone/numeric/bench';
 import { ReplayError } from '../replay/problems';
 import type { RowMonths } from '../replay/row-months';
 import type { SourceColumn } from '../replay/source';
@@ -29,8 +29,8 @@ export interface ClassColumn {
   /** Arrays over shared memory are not copied from thread to thread. */
   readonly counted: CountedRows;
   readonly constraints: AskedConstraints;
-  /** Edits of an earlier binning, oldest first, to be made again where they make sense. */
-  readonly earlier?: readonly EarlierEdit[];
+  /** Edits of an earlier binning, to be made again where they make sense; null where there are none. */
+  readonly earlier?: EarlierEdits | null;
   /** When each row applied; null where the sample does not say. */
   readonly months: RowMonths | null;
 }
@@ -58,7 +58,7 @@ export const classColumn: Task<ClassColumn, ClassedColumn | { readonly unusable:
   data,
   counted,
   constraints: asked,
-  earlier = [],
+  earlier = null,
   months: rowMonths,
 }) => {
   try {
@@ -69,7 +69,7 @@ export const classColumn: Task<ClassColumn, ClassedColumn | { readonly unusable:
       return { unusable: 'No development row has a value.' };
     const { bins: automatic, constraints } = classFine(counts.fine, asked);
     // Cuts of earlier edits lie where they lay: the fine classes are split there, after the automatic bins have been found without them.
-    const more = carriedEdges(counts.fine, earlier).slice(0, Math.max(0, mostFineEdges(defined.special.length) - counts.fine.edges.length));
+    const more = carriedEdges(counts.fine, earlier?.edits ?? []).slice(0, Math.max(0, mostFineEdges(defined.special.length) - counts.fine.edges.length));
     const { fine, outOfTime, slotOf } =
       more.length > 0 ? splitFineClasses(defined, source, data, counted, tallied, counts.fine, more) : counts;
     const { bins, steps } = carryEdits(fine, automatic, earlier);

@@ -1,5 +1,5 @@
 import { AskedConstraints, type Bins } from '@tallystone/contracts/binnings/bins';
-import type { EarlierEdit } from '@tallystone/numeric/bench';
+import type { EarlierEdits } from '@tallystone/numeric/bench';
 import { classNumeric } from '@tallystone/numeric/binning/classing';
 import { Generator } from '@tallystone/numeric/random/generator';
 import { describe, expect, it } from 'vitest';
@@ -124,17 +124,17 @@ describe('fine classes as many as the form allows', () => {
     const asked = AskedConstraints.parse({ fineClasses: 200, mostBins: 5 });
     const column = sourceOf({ income: values }).column('income') as SourceColumn;
     const defined = { column: 'income', kind: 'numeric' as const, special: [{ label: 'none', values: [-999] }] };
-    const classed = (earlier: EarlierEdit[]) => {
+    const classed = (earlier: EarlierEdits | null) => {
       const made = classColumn({ defined, column, data: { ...data, missing: [...data.missing] }, counted, constraints: asked, earlier, months: null }, control);
       if (made instanceof Promise || 'unusable' in made) throw new Error('It can be classed');
       return made;
     };
-    const { fine, automatic } = classed([]);
+    const { fine, automatic } = classed(null);
     expect(fine.edges).toHaveLength(199);
     if (automatic.kind !== 'numeric') throw new Error('It is numeric');
     const before = automatic;
     const after = { ...before, edges: [...before.edges, 123_456.5].sort((a, b) => a - b) };
-    const carried = classed([{ kind: 'cut added', before, after, special: ['none'] }]);
+    const carried = classed({ fine, edits: [{ kind: 'cut added', what: 'Cut added at 123456.5', before, after }] });
     expect(carried.fine.edges).toHaveLength(200);
     expect(carried.carried).toMatchObject([{ kept: true, what: 'Cut added at 123456.5' }]);
   });

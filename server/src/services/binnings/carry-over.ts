@@ -27,9 +27,9 @@ export async function readEarlier(
   if (binningId === null) return new Map();
   const found = await decidedEarlier(sequelize, binningId);
   const entries = await Promise.all(
-    found.map(async ({ id, column, constraints, included, leftOutReason, special }) => {
+    found.map(async ({ id, column, constraints, included, leftOutReason, fine }) => {
       const stored = await editsInEffect(sequelize, id);
-      const edits = stored.map(({ kind, before, after }) => ({ kind, before, after, special }));
+      const edits = fine && { fine, edits: stored.map(({ kind, what, before, after }) => ({ kind, what, before, after })) };
       return [column, { constraints: askedAgain(constraints), included, leftOutReason, stored, edits }] as const;
     }),
   );

@@ -1,6 +1,6 @@
 import type { AskedConstraints } from '@tallystone/contracts/binnings/bins';
 import type { DataReading } from '@tallystone/contracts/specification/types';
-import type { EarlierEdit } from '@tallystone/numeric/bench';
+import type { EarlierEdits } from '@tallystone/numeric/bench';
 import type { Sequelize } from 'sequelize';
 import type { ClassedColumn } from '../../classing/class-column';
 import type { CountedRows } from '../../classing/fine-classes';
@@ -20,7 +20,8 @@ export interface ColumnToClass {
 /** What an earlier binning decided about a characteristic. */
 export interface Earlier {
   readonly constraints: AskedConstraints;
-  readonly edits: readonly EarlierEdit[];
+  /** Null where it was not edited. */
+  readonly edits: EarlierEdits | null;
 }
 
 export interface Classed {
@@ -78,7 +79,7 @@ export async function classCharacteristics(
         data: asked.data,
         counted,
         constraints: asked.earlier.get(defined.column)?.constraints ?? asked.constraints,
-        earlier: asked.earlier.get(defined.column)?.edits ?? [],
+        earlier: asked.earlier.get(defined.column)?.edits ?? null,
         months: asked.months,
       },
       { signal: control.signal, transfer: contents.map(({ buffer }) => buffer) },

@@ -57,16 +57,17 @@ export function listCharacteristics(
   );
 }
 
-/** What an earlier binning decided about each characteristic, without its counts. */
+/** What an earlier binning decided about each characteristic; with its counts where somebody edited it. */
 export function decidedEarlier(
   sequelize: Sequelize,
   binningId: string,
 ): Promise<
-  (Pick<FoundCharacteristic, 'id' | 'column' | 'constraints' | 'included' | 'leftOutReason'> & { special: string[] })[]
+  (Pick<FoundCharacteristic, 'id' | 'column' | 'constraints' | 'included' | 'leftOutReason'> & { fine: Fine | null })[]
 > {
   return rows(
     sequelize,
-    `SELECT c.id, c.column_name AS "column", c.constraints, c.included, c.left_out_reason AS "leftOutReason", c.fine -> 'special' AS special
+    `SELECT c.id, c.column_name AS "column", c.constraints, c.included, c.left_out_reason AS "leftOutReason", 
+            CASE WHEN EXISTS (SELECT 1 FROM binning_edits e WHERE e.characteristic_id = c.id AND e.place IS NOT NULL) THEN c.fine END AS fine
        FROM binning_characteristics c WHERE c.binning_id = $1`,
     [binningId],
   );
