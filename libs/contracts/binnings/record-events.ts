@@ -4,6 +4,8 @@ import { AskedConstraints, Bins, Constraints } from './bins';
 import { EditKind } from './edits';
 
 const column = z.string();
+/** Automatic: it went out or came in with its bins, when somebody changed these. */
+const inclusion = z.strictObject({ column, automatic: z.literal(true).optional() });
 
 export const binningEvents = [
   recordEvent('binning.started', 'binning', {
@@ -15,7 +17,10 @@ export const binningEvents = [
     }),
   }),
   recordEvent('binning.classed', 'binning', { after: z.strictObject({ characteristics: z.int() }) }),
-  recordEvent('binning.not-carried', 'binning', { detail: z.strictObject({ column, edits: z.int(), leftOut: z.string().nullable() }), reason: z.string() }),
+  recordEvent('binning.not-carried', 'binning', {
+    detail: z.strictObject({ column, edits: z.int(), leftOut: z.string().nullable() }),
+    reason: z.string(),
+  }),
   recordEvent('binning.edited', 'binning-characteristic', {
     before: Bins,
     after: Bins,
@@ -52,9 +57,9 @@ export const binningEvents = [
     detail: z.strictObject({ column, constraints: Constraints, editsDropped: z.int() }),
     reason: z.string().optional(),
   }),
-  recordEvent('binning.left-out', 'binning-characteristic', { detail: z.strictObject({ column }), reason: z.string() }),
+  recordEvent('binning.left-out', 'binning-characteristic', { detail: inclusion, reason: z.string() }),
   recordEvent('binning.taken-in', 'binning-characteristic', {
-    detail: z.strictObject({ column }),
+    detail: inclusion,
     reason: z.string().optional(),
   }),
 ] as const;

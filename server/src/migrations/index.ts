@@ -21,6 +21,7 @@ import { correlations } from './0202-correlations';
 import { carriedEdits } from './0203-carried-edits';
 import { binningMonths } from './0210-binning-months';
 import { notHere } from './0211-not-here';
+import { inclusionDecided } from './0212-inclusion-decided';
 import { fits } from './0300-fits';
 import { scorecards } from './0400-scorecards';
 import { versions } from './0401-versions';
@@ -30,4 +31,4 @@ import type { Migration } from './migration';
  * Every migration in order. A static list, because a glob finds nothing in the bundle. Numbers leave room by entity: 00xx the base,
  * 01xx models and samples, 02xx binnings, 03xx fits, 04xx scorecards and versions, 05xx documents; the order of this list decides.
  */
-export const migrations: readonly Migration[] = [people, sessions, record, runs, queue, mail, models, samples, outOfTime, binnings, correlations, carriedEdits, binningMonths, fits, scorecards, versions, runParts, sampleBalances, acceptsOnly, qualityReports, dictionaries, erasures, permissions, notHere, doubtfulLines, draftComparisons];
+export const migrations: readonly Migration[] = [people, sessions, record, runs, queue, mail, models, samples, outOfTime, binnings, correlations, carriedEdits, binningMonths, fits, scorecards, versions, runParts, sampleBalances, acceptsOnly, qualityReports, dictionaries, erasures, permissions, notHere, doubtfulLines, draftComparisons, inclusionDecided];

@@ -67,6 +67,8 @@ export class BinningCharacteristic extends Model<
   declare outOfTimeCsi: CreationOptional<number | null>;
   declare included: CreationOptional<boolean>;
   declare leftOutReason: CreationOptional<string>;
+  /** A person decided whether it is included, other than the bins alone would have it. */
+  declare inclusionDecided: CreationOptional<boolean>;
   declare revision: CreationOptional<number>;
   declare changedAt: CreationOptional<Date>;
   declare changedBy: string;
@@ -126,6 +128,7 @@ export function defineBinning(sequelize: Sequelize): void {
       outOfTimeCsi: DataTypes.DOUBLE,
       included: DataTypes.BOOLEAN,
       leftOutReason: DataTypes.TEXT,
+      inclusionDecided: DataTypes.BOOLEAN,
       revision: DataTypes.INTEGER,
       changedAt: DataTypes.DATE,
       changedBy: DataTypes.UUID,

@@ -9,12 +9,11 @@ import { askedAgain } from '../../classing/definition';
 import { type StoredEdit, editsInEffect } from './edits';
 import type { Earlier } from './class-characteristics';
 import { decidedEarlier } from './find-characteristic';
+import type { Inclusion } from './inclusion';
 import { words } from './save-bins';
 
 /** A characteristic of the earlier binning, as far as the new one needs it. */
-export interface EarlierCharacteristic extends Earlier {
-  readonly included: boolean;
-  readonly leftOutReason: string;
+export interface EarlierCharacteristic extends Earlier, Inclusion {
   /** In the order of `edits`. */
   readonly stored: readonly StoredEdit[];
 }
@@ -27,10 +26,13 @@ export async function readEarlier(
   if (binningId === null) return new Map();
   const found = await decidedEarlier(sequelize, binningId);
   const entries = await Promise.all(
-    found.map(async ({ id, column, constraints, included, leftOutReason, fine }) => {
+    found.map(async ({ id, column, constraints, included, leftOutReason, inclusionDecided, fine }) => {
       const stored = await editsInEffect(sequelize, id);
       const edits = fine && { fine, edits: stored.map(({ kind, what, before, after }) => ({ kind, what, before, after })) };
-      return [column, { constraints: askedAgain(constraints), included, leftOutReason, stored, edits }] as const;
+      return [
+        column,
+        { constraints: askedAgain(constraints), included, leftOutReason, inclusionDecided, stored, edits },
+      ] as const;
     }),
   );
   return new Map(entries);

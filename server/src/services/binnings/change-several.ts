@@ -6,6 +6,7 @@ import { Problem, notFound } from '../../problems/problem';
 import { appendRecord } from '../record/append';
 import type { FoundBinning } from './find-binning';
 import { type FoundCharacteristic, lockCharacteristics } from './find-characteristic';
+import { inclusionAsked } from './inclusion';
 
 export interface Chosen {
   readonly id: string;
@@ -50,13 +51,13 @@ export async function setInclusion(
   asked: { characteristics: readonly Chosen[]; included: boolean; reason: string },
 ): Promise<void> {
   const found = (await lockChosen(sequelize, tx, binning, asked.characteristics)).filter(
-    (one) => one.included !== asked.included,
+    // What went out with its bins stays out once a person says so.
+    (one) => one.included !== asked.included || (!asked.included && !one.inclusionDecided),
   );
   for (const one of found) {
     await BinningCharacteristic.update(
       {
-        included: asked.included,
-        leftOutReason: asked.included ? '' : asked.reason,
+        ...inclusionAsked(one.summary, asked),
         revision: one.revision + 1,
         changedAt: new Date(),
         changedBy: person.id,

@@ -11,6 +11,7 @@ import { findDefinition, loadPrepared } from '../samples/definitions';
 import { type Barred, splitColumns } from './barred';
 import { type EarlierCharacteristic, readEarlier, storeCarried } from './carry-over';
 import { classCharacteristics } from './class-characteristics';
+import { inclusionOf } from './inclusion';
 import { loadRowMonths, storeMonths } from './months';
 
 type Classed = Awaited<ReturnType<typeof classCharacteristics>>;
@@ -77,9 +78,6 @@ export async function storeClassing(
         outOfTimeWarnings,
         outOfTimeCsi,
       }) => {
-        const oneBin = summary.warnings.find(({ code }) => code === 'one-bin');
-        const before = earlier.get(column);
-        const leftOut = oneBin?.message ?? (before?.included === false ? before.leftOutReason : null);
         return {
           id,
           binningId,
@@ -94,8 +92,8 @@ export async function storeClassing(
           summary,
           outOfTimeWarnings,
           outOfTimeCsi,
-          included: leftOut === null,
-          leftOutReason: leftOut ?? '',
+          // That bins of the earlier sample told nobody apart says nothing of these.
+          ...inclusionOf(summary, earlier.get(column) ?? null),
           changedBy: run.personId,
         };
       },
@@ -135,12 +133,13 @@ function decisionsNotHere(
   roles: ReadonlyMap<string, ColumnRole>,
 ): NotHere[] {
   const decided = [...earlier].sort(([a], [b]) => (a < b ? -1 : 1));
-  return decided.flatMap(([column, { stored, included, leftOutReason }]) => {
-    if (here.has(column) || (stored.length === 0 && included)) return [];
+  return decided.flatMap(([column, { stored, included, leftOutReason, inclusionDecided }]) => {
+    const leftOut = inclusionDecided && !included ? leftOutReason : null;
+    if (here.has(column) || (stored.length === 0 && leftOut === null)) return [];
     const role = roles.get(column);
     const why =
       barred.find((one) => one.column === column)?.reason ??
       (role === undefined ? 'The sample has no such column.' : `In this sample it has the role “${role}”.`);
-    return [{ column, edits: stored.length, leftOut: included ? null : leftOutReason, why }];
+    return [{ column, edits: stored.length, leftOut, why }];
   });
 }

@@ -14,6 +14,8 @@ export interface ListedCharacteristic {
   readonly position: number;
   readonly included: boolean;
   readonly leftOutReason: string;
+  /** By a person, other than the bins alone would have it. */
+  readonly inclusionDecided: boolean;
   readonly summary: StoredSummary;
   readonly outOfTimeWarnings: Warning[];
   readonly outOfTimeCsi: number | null;
@@ -36,7 +38,8 @@ export interface FoundCharacteristic extends ListedCharacteristic {
 }
 
 const listed = `
-  c.id, c.column_name AS "column", c.kind, c.position, c.included, c.left_out_reason AS "leftOutReason", c.summary,
+  c.id, c.column_name AS "column", c.kind, c.position, c.included, c.left_out_reason AS "leftOutReason",
+  c.inclusion_decided AS "inclusionDecided", c.summary,
   c.out_of_time_warnings AS "outOfTimeWarnings", c.out_of_time_csi AS "outOfTimeCsi", c.revision,
   (SELECT count(*)::int FROM binning_edits e WHERE e.characteristic_id = c.id AND e.place IS NOT NULL) AS edits,
   (SELECT count(*)::int FROM binning_edits e WHERE e.characteristic_id = c.id AND e.place IS NOT NULL AND e.reason IS NULL) AS "editsWithoutReason",
@@ -62,11 +65,13 @@ export function decidedEarlier(
   sequelize: Sequelize,
   binningId: string,
 ): Promise<
-  (Pick<FoundCharacteristic, 'id' | 'column' | 'constraints' | 'included' | 'leftOutReason'> & { fine: Fine | null })[]
+  (Pick<FoundCharacteristic, 'id' | 'column' | 'constraints' | 'included' | 'leftOutReason' | 'inclusionDecided'> & {
+    fine: Fine | null;
+  })[]
 > {
   return rows(
     sequelize,
-    `SELECT c.id, c.column_name AS "column", c.constraints, c.included, c.left_out_reason AS "leftOutReason", 
+    `SELECT c.id, c.column_name AS "column", c.constraints, c.included, c.left_out_reason AS "leftOutReason", c.inclusion_decided AS "inclusionDecided",
             CASE WHEN EXISTS (SELECT 1 FROM binning_edits e WHERE e.characteristic_id = c.id AND e.place IS NOT NULL) THEN c.fine END AS fine
        FROM binning_characteristics c WHERE c.binning_id = $1`,
     [binningId],

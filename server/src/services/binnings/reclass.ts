@@ -17,6 +17,7 @@ import { inTurn } from '../samples/in-turn';
 import { type Chosen, lockChosen } from './change-several';
 import { type FoundBinning, findBinning } from './find-binning';
 import { type FoundCharacteristic, findCharacteristics } from './find-characteristic';
+import { inclusionOf, recordInclusion } from './inclusion';
 import { storedMonths } from './months';
 
 /**
@@ -143,6 +144,7 @@ async function storeReclassed(
     const made = classed.get(one.id);
     if (!made) throw new Error(`Characteristic ${one.id} was not classed`);
     const { automatic, constraints, summary, outOfTimeWarnings, outOfTimeCsi } = made;
+    const inclusion = inclusionOf(summary, one);
     await BinningCharacteristic.update(
       {
         automatic,
@@ -151,6 +153,7 @@ async function storeReclassed(
         summary,
         outOfTimeWarnings,
         outOfTimeCsi,
+        ...inclusion,
         revision: one.revision + 1,
         changedAt: new Date(),
         changedBy: person.id,
@@ -169,5 +172,6 @@ async function storeReclassed(
       detail: { column: one.column, constraints, editsDropped: one.edits },
       ...(reason === '' ? {} : { reason }),
     });
+    await recordInclusion(tx, person, { id: one.id, modelId: binning.modelId, column: one.column }, one, inclusion);
   }
 }

@@ -10,6 +10,7 @@ import { appendRecord } from '../record/append';
 import { checkBins, checkEdits, sameBins } from './check-bins';
 import { type StoredEdit, editsById, editsInEffect } from './edits';
 import type { OnBench } from './find-characteristic';
+import { type Inclusion, inclusionOf, recordInclusion } from './inclusion';
 import { storedMonths } from './months';
 
 /**
@@ -47,6 +48,7 @@ export async function saveBins(
   for (const edit of sent.edits) requireSame(known.get(edit.id), edit, characteristic.id);
 
   const current = binsOfEntry(characteristic.definition, fine.pooled);
+  let inclusion: Inclusion = characteristic;
   if (
     !sameBins(current, sent.bins) ||
     before.length !== sent.edits.length ||
@@ -54,10 +56,13 @@ export async function saveBins(
   ) {
     const months = await storedMonths(sequelize, characteristic.id, tx);
     const classing = sent.edits.length > 0 ? ({ made: 'by hand' } as const) : automaticClassing(constraints);
+    const summarised = summarise({ fine, outOfTime, months: months && months.counts }, sent.bins, constraints);
+    inclusion = inclusionOf(summarised.summary, characteristic);
     await BinningCharacteristic.update(
       {
         definition: withBins(characteristic.definition, sent.bins, classing, fine.pooled),
-        ...summarise({ fine, outOfTime, months: months && months.counts }, sent.bins, constraints),
+        ...summarised,
+        ...inclusion,
         revision: characteristic.revision + 1,
         changedAt: new Date(),
         changedBy: person.id,
@@ -117,6 +122,8 @@ export async function saveBins(
     }
     if (given) records.push(() => appendRecord(tx, { ...common, action: 'binning.reason-given', detail, reason: words(given) }));
   }
+  const { id, column } = characteristic;
+  records.push(() => recordInclusion(tx, person, { id, modelId: binning.modelId, column }, characteristic, inclusion));
   // The record's lock is taken last and held for as short as can be.
   for (const append of records) await append();
 }
