@@ -104,7 +104,8 @@ export class BinningsPage {
     const all = this.all();
     if (!all || all.length === 0) return null;
     const ready = all.filter(({ state }) => state === 'ready');
-    if (ready.length === 0) return 'The characteristics are being classed.';
+    if (ready.length === 0)
+      return this.running() ? 'The characteristics are being classed.' : 'No binning has its characteristics classed yet.';
     const latest = ready[0];
     const edits = latest.edits === 0 ? 'no manual edit' : plural(latest.edits, 'manual edit');
     return `${latest.name} takes ${plural(latest.included, 'characteristic')} of ${latest.characteristics}, with ${edits}.`;
@@ -114,7 +115,8 @@ export class BinningsPage {
       key: 'name',
       label: 'Binning',
       value: (row) => row.name,
-      link: (row) => (row.state === 'ready' ? [row.id] : null),
+      // One that did not finish says there why, and is started again.
+      link: (row) => (row.state === 'ready' || row.state === 'failed' ? [row.id] : null),
       sortable: true,
     },
     { key: 'state', label: 'State', value: (row) => stateWords[row.state] },

@@ -12,6 +12,7 @@ import { Router, provideRouter, withComponentInputBinding } from '@angular/route
 import { RouterTestingHarness } from '@angular/router/testing';
 import { mostReclassedAtOnce } from '@tallystone/contracts/binnings/limits';
 import type { Binning, CharacteristicList, CharacteristicSummary } from '@tallystone/contracts/binnings/schema';
+import { CurrentModel } from '../../../core/current-model';
 import { type Run, Runs } from '../../../core/events/runs';
 import { problemInterceptor } from '../../../core/http/interceptors';
 import { provideIcons } from '../../../ui/register-icons';
@@ -237,6 +238,76 @@ describe('CharacteristicsPage', () => {
     await press('Take in');
     expect((await posted('/api/binnings/b1/inclusions')).request.body).toMatchObject({
       characteristics: [{ id: region.id, revision: 9 }],
+    });
+  });
+
+  describe('a binning whose run ended without bins', () => {
+    const failed: Partial<Binning> = {
+      state: 'failed',
+      runId: '0b1c3d5e-0000-4000-8000-000000000001',
+      problem: 'The work failed on our side. Give the administrator the id of this run.',
+      characteristics: 0,
+      included: 0,
+      abilities: [],
+      from: { id: 'b0', name: 'Earlier', carried: 0, notCarried: 0, notHere: [] },
+    };
+    const nothing = listOf([], { finding: 'Nothing has been classed yet.' });
+    const develop = async (abilities: string[]): Promise<void> => {
+      const opening = TestBed.inject(CurrentModel).open('m1');
+      server.expectOne('/api/models/m1').flush({ id: 'm1', name: 'Cards', abilities }, { headers: { ETag: '"1"' } });
+      await opening;
+      await settled();
+    };
+    const links = (): (string | undefined)[] => [...page().querySelectorAll('a')].map((link) => link.textContent?.trim());
+
+    it('says why with the id of the run, and offers nothing that needs bins', async () => {
+      await open({ of: nothing, binning: failed });
+      await develop(['develop']);
+      const alert = page().querySelector('[role=alert]')?.textContent?.replace(/\s+/g, ' ');
+      expect(alert).toContain(`The characteristics were not classed. ${failed.problem}`);
+      expect(alert).toContain(`Run ${failed.runId}`);
+      expect(links()).toEqual(['All binnings']);
+      expect(page().querySelector('ts-out-of-time-cover')).toBeNull();
+      expect(shown()).toContain('under the same constraints, starting from Earlier.');
+    });
+
+    it('is started again with what it was started with, and leads to the new one', async () => {
+      await open({ of: nothing, binning: failed });
+      await develop(['develop']);
+      await press('Start again');
+      const asking = await posted('/api/models/m1/binnings');
+      const key = asking.request.headers.get('Idempotency-Key');
+      expect(key).toBeTruthy();
+      const { definitionId, name, constraints } = firstBinning;
+      expect(asking.request.body).toEqual({ definitionId, name, constraints, fromBinningId: 'b0' });
+      asking.flush(
+        { title: 'Busy', status: 503, code: 'busy', detail: 'No worker is there.' },
+        { status: 503, statusText: 'Unavailable' },
+      );
+      await settled();
+      expect(shown()).toContain('No worker is there.');
+      await press('Start again');
+      const again = await posted('/api/models/m1/binnings');
+      expect(again.request.headers.get('Idempotency-Key')).toBe(key);
+      again.flush({ ...firstBinning, id: 'b2', state: 'queued' });
+      await vi.waitFor(() => expect(TestBed.inject(Router).url).toBe('/models/m1/binning/b2'));
+    });
+
+    it('is started again where it was cancelled, and by nobody who only reads', async () => {
+      await open({ of: nothing, binning: { ...failed, state: 'cancelled', problem: null, runId: null } });
+      expect(shown()).not.toContain('Start again');
+      await develop(['develop']);
+      expect(shown()).toContain('Start again');
+      await develop([]);
+      expect(shown()).not.toContain('Start again');
+    });
+
+    it('has its actions where it is ready, and does not offer to start again', async () => {
+      await open();
+      await develop(['develop']);
+      expect(links()).toEqual(expect.arrayContaining(['Correlations', 'History of edits', 'All binnings']));
+      expect(page().querySelector('ts-out-of-time-cover')).not.toBeNull();
+      expect(shown()).not.toContain('Start again');
     });
   });
 

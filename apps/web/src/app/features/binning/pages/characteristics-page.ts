@@ -80,9 +80,20 @@ export class CharacteristicsPage {
   private readonly opened = computed(() => this.binning.hasValue() && this.binning.value().outOfTime === 'opened');
   /** Without an application date nothing can be told by month. */
   private readonly dated = computed(() => (this.all() ?? []).some(({ stability }) => stability.byMonth !== null));
+  protected readonly isReady = computed(() => this.binning.hasValue() && this.binning.value().state === 'ready');
   protected readonly mayOpen = computed(
     () => this.current.can('develop') && this.binning.hasValue() && this.binning.value().erased === null,
   );
+  /** A binning whose run ended without bins stays as it is; another takes its place. */
+  protected readonly mayStartAgain = computed(
+    () => this.mayOpen() && this.binning.hasValue() && ['failed', 'cancelled'].includes(this.binning.value().state),
+  );
+  protected readonly startsFrom = computed(() => {
+    const from = this.binning.hasValue() ? this.binning.value().from : null;
+    return from ? `, starting from ${from.name}` : '';
+  });
+  protected readonly starting = new Task();
+  private key = newIdempotencyKey();
   protected readonly run = this.runs.run(() => (this.binning.hasValue() ? this.binning.value().runId : null));
   private readonly reclassings = this.runs.forModel(() => this.modelId(), 'binning.reclass');
   /** The run that was started on this page and has not ended well, which stays until the page is left. */
@@ -303,6 +314,17 @@ export class CharacteristicsPage {
         this.reclassingId.set(runId);
         this.chosen.set(new Set());
       });
+  }
+
+  protected async startAgain(): Promise<void> {
+    if (!this.binning.hasValue()) return;
+    const { definitionId, name, constraints, from } = this.binning.value();
+    const started = await this.starting.run(() =>
+      this.binnings.start(this.modelId(), { definitionId, name, constraints, fromBinningId: from?.id ?? null }, this.key),
+    );
+    if (!started) return;
+    this.key = newIdempotencyKey();
+    await this.router.navigate(['/models', this.modelId(), 'binning', started.id]);
   }
 
   protected async openOutOfTime(reason: string): Promise<void> {
