@@ -107,6 +107,90 @@ describe('the bench of one characteristic', () => {
     expect(bench.state()).toBe('saved');
   });
 
+  describe('a save that does not go well', () => {
+    beforeEach(() => void vi.useFakeTimers());
+    afterEach(() => void vi.useRealTimers());
+    const saves = () => http.match({ method: 'PUT', url });
+    /** An edit, and the save of it that goes out after its pause. */
+    const edited = async () => {
+      bench.do(addCut(utilisation.fine, bins(), 60));
+      await vi.advanceTimersByTimeAsync(1200);
+      return saves()[0];
+    };
+    const answered = () => vi.advanceTimersByTimeAsync(0);
+
+    it('is tried again where what somebody else saved could not be read', async () => {
+      (await edited()).flush(null, { status: 412, statusText: 'Stale' });
+      await answered();
+      http.expectOne({ method: 'GET', url }).error(new ProgressEvent('error'));
+      await answered();
+      expect(bench.state()).toBe('failed');
+      await vi.advanceTimersByTimeAsync(4999);
+      expect(saves()).toHaveLength(0);
+      await vi.advanceTimersByTimeAsync(1);
+      const [again] = saves();
+      expect(again.request.body.bins.edges).toEqual([20, 40, 60]);
+      again.flush(null, { status: 412, statusText: 'Stale' });
+      await answered();
+      http.expectOne({ method: 'GET', url }).flush({ ...utilisation, changedBy: 'Colin', revision: 4 }, tag(4));
+      await answered();
+      expect([bench.state(), bench.theirs()?.changedBy, bench.problem()]).toEqual(['stale', 'Colin', null]);
+      await vi.advanceTimersByTimeAsync(60_000);
+      expect(saves()).toHaveLength(0);
+    });
+
+    for (const status of [403, 409, 422])
+      it(`is not sent again by itself when it is refused with ${status}, and nothing is lost`, async () => {
+        (await edited()).flush({ title: 'These bins cannot be', code: 'no', detail: '' }, { status, statusText: 'No' });
+        await answered();
+        await vi.advanceTimersByTimeAsync(60_000);
+        expect(saves()).toHaveLength(0);
+        expect([bench.state(), bench.unsaved(), bins().edges]).toEqual(['refused', true, [20, 40, 60]]);
+        expect(bench.problem()).toMatchObject({ status, title: 'These bins cannot be' });
+        // The next edit is another question, and so is a person who asks again.
+        bench.undo();
+        await vi.advanceTimersByTimeAsync(1200);
+        saves()[0].flush({ title: 'No', code: 'no' }, { status, statusText: 'No' });
+        await answered();
+        void bench.flush();
+        await answered();
+        saves()[0].flush({ ...utilisation, revision: 4 }, tag(4));
+        await answered();
+        expect([bench.state(), bench.problem()]).toEqual(['saved', null]);
+      });
+
+    it('is sent with what was edited while the refusal was under way', async () => {
+      const refused = await edited();
+      bench.undo();
+      refused.flush(null, { status: 409, statusText: 'Conflict' });
+      await answered();
+      expect(bench.state()).toBe('waiting');
+      await vi.advanceTimersByTimeAsync(1200);
+      const [next] = saves();
+      expect(next.request.body.bins.edges).toEqual([20, 40]);
+      next.flush({ ...utilisation, revision: 4 }, tag(4));
+      await answered();
+      expect(bench.state()).toBe('saved');
+    });
+
+    for (const [status, headers, after] of [
+      [408, {}, 5000],
+      [429, { 'Retry-After': '30' }, 30_000],
+      [503, {}, 5000],
+    ] as const)
+      it(`is tried again after ${after / 1000} s when it is answered with ${status}`, async () => {
+        (await edited()).flush(null, { status, statusText: 'Later', headers });
+        await answered();
+        expect(bench.state()).toBe('failed');
+        await vi.advanceTimersByTimeAsync(after - 1);
+        expect(saves()).toHaveLength(0);
+        await vi.advanceTimersByTimeAsync(1);
+        saves()[0].flush({ ...utilisation, revision: 4 }, tag(4));
+        await answered();
+        expect(bench.state()).toBe('saved');
+      });
+  });
+
   it('saves two seconds after the first unsaved edit at the latest, however quickly others follow', async () => {
     vi.useFakeTimers();
     try {

@@ -14,6 +14,7 @@ import {
   type NumericBins,
 } from '@tallystone/numeric/bench';
 import { type Tagged, isStale } from '../../../core/http/etag';
+import { type Problem, asProblem } from '../../../core/http/problem';
 import {
   act,
   begin,
@@ -37,8 +38,14 @@ const saveAfter = 1200; // ms
 const saveWithin = 2000; // ms
 const retryAfter = 5000; // ms
 
-/** waiting: an edit is not sent yet; stale: somebody else saved first and a person must say which bins stay. */
-export type SaveState = 'saved' | 'waiting' | 'saving' | 'stale' | 'failed';
+/**
+ * waiting: an edit is not sent yet; stale: somebody else saved first and a person must say which bins stay; failed: it is tried again by itself; refused:
+ * the same would be refused again, so that it waits for a person.
+ */
+export type SaveState = 'saved' | 'waiting' | 'saving' | 'stale' | 'failed' | 'refused';
+
+/** Whether the same may go well later: the server was not reached, could not answer or asks to wait. What it read and refused it will refuse again. */
+const mayPass = ({ status }: Problem): boolean => status < 400 || status >= 500 || status === 408 || status === 429;
 
 /**
  * The bench of one characteristic: its bins under edit, everything recalculated at once from the fine-class counts by the server's own code,
@@ -165,7 +172,7 @@ export class Bench {
   async flush(): Promise<void> {
     clearTimeout(this.timer);
     await this.saving;
-    if (this.stateOf() === 'waiting' || this.stateOf() === 'failed') await this.save();
+    if (['waiting', 'failed', 'refused'].includes(this.stateOf())) await this.save();
   }
 
   /** Their bins; undo brings own edits back, over theirs. */
@@ -267,24 +274,36 @@ export class Bench {
       }
     } catch (error) {
       if (this.address !== address) return;
-      if (isStale(error)) await this.meet(address);
-      else {
-        this.problemOf.set(error);
-        this.stateOf.set('failed');
-        this.timer = setTimeout(() => void this.save(), retryAfter);
-      }
+      if (isStale(error)) await this.meet(address, sent);
+      else this.fail(error, sent);
     }
   }
 
   /** Somebody else was faster: looks at what they saved. */
-  private async meet(address: { binningId: string; characteristicId: string }): Promise<void> {
+  private async meet(address: { binningId: string; characteristicId: string }, sent: History): Promise<void> {
     try {
-      this.theirsOf.set(await this.binnings.readCharacteristic(address.binningId, address.characteristicId));
+      const theirs = await this.binnings.readCharacteristic(address.binningId, address.characteristicId);
+      if (this.address !== address) return;
+      clearTimeout(this.timer);
+      this.theirsOf.set(theirs);
+      this.problemOf.set(null);
       this.stateOf.set('stale');
     } catch (error) {
-      this.problemOf.set(error);
-      this.stateOf.set('failed');
+      if (this.address === address) this.fail(error, sent);
     }
+  }
+
+  /** Nothing is lost: what could not be saved stays here, and is sent again by itself where that can help. */
+  private fail(error: unknown, sent: History): void {
+    const problem = asProblem(error);
+    clearTimeout(this.timer);
+    this.problemOf.set(problem);
+    if (mayPass(problem)) {
+      this.stateOf.set('failed');
+      this.timer = setTimeout(() => void this.save(), Math.max(retryAfter, 1000 * (problem.retryAfterSeconds ?? 0)));
+    } else if (this.historyOf() === sent) this.stateOf.set('refused');
+    // What was edited meanwhile is another question.
+    else this.wait();
   }
 
   private take({ value, etag }: Tagged<CharacteristicDetail>): void {

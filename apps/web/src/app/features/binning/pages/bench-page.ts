@@ -148,12 +148,20 @@ export class BenchPage {
         return 'Saving';
       case 'failed':
         return 'Not saved; trying again';
+      case 'refused':
+        return 'Not saved; your edits are kept here';
       case 'stale':
         return 'Not saved: somebody else saved first';
       default:
         return at ? `Saved ${moment(at)}` : '';
     }
   });
+  /** What can be done about a save that was refused, which is not tried again by itself. */
+  protected readonly refusedWords = computed(() =>
+    this.bench.state() === 'refused'
+      ? 'It was not saved and is not tried again by itself. No edit is lost: undo or change what was refused, or save again once it is put right.'
+      : null,
+  );
   protected readonly editsWords = computed(() => {
     const count = this.bench.unexplained();
     return `${plural(count, 'edit')} ${count === 1 ? 'has' : 'have'} no reason yet`;
