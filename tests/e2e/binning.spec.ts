@@ -225,6 +225,27 @@ test('a notch that is only pressed stays; dragged, it goes to a fine edge; undon
   await expect.poll(async () => (await bench.stored()).edits).toBe(0);
 });
 
+test('a cut that is moved on after it was saved is a second edit, and nobody took the first one back', async ({ page, signInAs }) => {
+  await signInAs('modeller');
+  const demo = await readDemoPlaces(page);
+  const bench = new BenchOnPage(page, demo, 'oldest_line_months');
+  await bench.open();
+  const takenBack = async (): Promise<number> => {
+    const { edits } = (await (await page.request.get(`/api/binnings/${demo.binningId}/edits`)).json()) as BinningHistory;
+    return edits.filter(({ column, inEffect }) => column === 'oldest_line_months' && !inEffect).length;
+  };
+  const before = await takenBack();
+  await bench.cut(2).focus();
+  await page.keyboard.press('ArrowRight');
+  await expect.poll(async () => (await bench.stored()).edits, { intervals: [50] }).toBe(1);
+  await page.keyboard.press('ArrowRight');
+  await expect.poll(async () => (await bench.stored()).edits).toBe(2);
+  const [first, second] = (await bench.stored()).editList;
+  expect([first.inEffect, second.inEffect, second.before]).toEqual([true, true, first.after]);
+  expect(await takenBack()).toBe(before);
+  await bench.reset();
+});
+
 test('a category is dragged onto another group, and sent there by keys', async ({ page, signInAs }) => {
   await signInAs('modeller');
   const demo = await readDemoPlaces(page);

@@ -10,6 +10,7 @@ import {
   reachable,
   redo,
   reset,
+  settled,
   takeTheirs,
   toSave,
   undo,
@@ -66,6 +67,22 @@ describe('the history of a bench', () => {
     history = later(history, (bins) => moveCut(fine, bins, 0, 10));
     history = later(history, (bins) => moveCut(fine, bins, 1, 60), 300);
     expect(history.edits).toHaveLength(2);
+  });
+
+  it('takes a quick move as an edit of its own once the one before has been sent', () => {
+    let history = later(begin(automatic, []), (bins) => moveCut(fine, bins, 0, 30));
+    const [sent] = history.edits;
+    history = later(settled(history), (bins) => moveCut(fine, bins, 0, 10), 300);
+    expect(history.edits[0]).toBe(sent);
+    expect(history.edits).toMatchObject([{ what: 'Cut moved from 20 to 30' }, { what: 'Cut moved from 30 to 10' }]);
+    expect(undo(history).edits).toEqual([sent]);
+  });
+
+  it('has no edit that changes nothing', () => {
+    const history = later(begin(automatic, []), (bins) => moveCut(fine, bins, 0, 30));
+    const same = { kind: 'cut moved', what: 'Cut moved from 20 to 30', bins: currentBins(history) } as const;
+    expect(act(history, same, 'again', clock + 5000)).toBe(history);
+    expect(act(history, same, 'at once', clock + 1)).toBe(history);
   });
 
   it('a new edit ends what could be redone', () => {

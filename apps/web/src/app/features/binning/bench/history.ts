@@ -32,7 +32,8 @@ export function begin(automatic: Bins, edits: readonly (BenchEdit | Edit)[]): Hi
 export const currentBins = (history: History): Bins => history.edits.at(-1)?.after ?? history.automatic;
 
 /**
- * The history after one more edit. A cut that is moved again at once is the same edit, further along; back where it came from, it is none.
+ * The history after one more edit; the same history where it changes nothing. A cut that is moved again at once is the same edit, further along; back
+ * where it came from, it is none.
  *
  * @param id of the new edit, unique everywhere
  * @param now milliseconds of a clock that never goes back
@@ -40,6 +41,7 @@ export const currentBins = (history: History): Bins => history.edits.at(-1)?.aft
 export function act(history: History, edit: EditOf<Bins>, id: string, now: number): History {
   const last = history.edits.at(-1);
   const before = currentBins(history);
+  if (equal(before, edit.bins)) return history;
   const next: BenchEdit = { id, kind: edit.kind, what: edit.what, before, after: edit.bins, reason: null };
   const gesture =
     last && last.reason === null && now - history.lastAt < oneGesture && history.past.length > 0 && samePull(last, next);
@@ -55,6 +57,9 @@ export function act(history: History, edit: EditOf<Bins>, id: string, now: numbe
     lastAt: now,
   };
 }
+
+/** The gesture is over: what has been sent stays as it was sent, and a further move of the same cut is an edit of its own. */
+export const settled = (history: History): History => ({ ...history, lastAt: -Infinity });
 
 /** Back to the automatic bins: a step like any other, which undo takes back. */
 export function reset(history: History): History {

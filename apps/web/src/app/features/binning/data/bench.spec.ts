@@ -1,7 +1,7 @@
 import { provideHttpClient, withInterceptors } from '@angular/common/http';
 import { HttpTestingController, provideHttpClientTesting } from '@angular/common/http/testing';
 import { TestBed } from '@angular/core/testing';
-import { addCut, mergeNumeric, type NumericBins } from '@tallystone/numeric/bench';
+import { addCut, mergeNumeric, moveCut, type NumericBins } from '@tallystone/numeric/bench';
 import { problemInterceptor } from '../../../core/http/interceptors';
 import { utilisation } from '../testing/characteristics';
 import { Bench } from './bench';
@@ -105,6 +105,33 @@ describe('the bench of one characteristic', () => {
     request.flush({ ...utilisation, revision: 5 }, tag(5));
     await saving;
     expect(bench.state()).toBe('saved');
+  });
+
+  it('sends a cut that is moved on after a save as an edit of its own, and the one before as it was saved', async () => {
+    vi.useFakeTimers();
+    try {
+      const moved = async (edge: number) => {
+        bench.do(moveCut(utilisation.fine, bins(), 0, edge));
+        await vi.advanceTimersByTimeAsync(1200);
+        const [save] = http.match({ method: 'PUT', url });
+        return save;
+      };
+      const first = await moved(30);
+      const [kept] = first.request.body.edits;
+      first.flush({ ...utilisation, revision: 4 }, tag(4));
+      // Within two seconds of the first, which alone would be one gesture.
+      await vi.advanceTimersByTimeAsync(400);
+      const second = await moved(10);
+      expect(second.request.body.edits).toEqual([
+        kept,
+        expect.objectContaining({ what: 'Cut moved from 30 to 10', before: kept.after }),
+      ]);
+      second.flush({ ...utilisation, revision: 5 }, tag(5));
+      await vi.advanceTimersByTimeAsync(0);
+      expect(bench.state()).toBe('saved');
+    } finally {
+      vi.useRealTimers();
+    }
   });
 
   describe('a save that does not go well', () => {

@@ -24,6 +24,7 @@ import {
   reachable,
   redo,
   reset,
+  settled,
   takeTheirs,
   toSave,
   undo,
@@ -248,9 +249,12 @@ export class Bench {
   }
 
   private async send(): Promise<void> {
-    const sent = this.historyOf();
+    const history = this.historyOf();
     const { address } = this;
-    if (!sent || !address) return;
+    if (!history || !address) return;
+    // An edit that is further along than the one that was sent would be another one, and the record would say that the first was taken back.
+    const sent = settled(history);
+    this.historyOf.set(sent);
     clearTimeout(this.timer);
     this.waitingSince = null;
     this.stateOf.set('saving');
