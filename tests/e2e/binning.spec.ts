@@ -246,6 +246,26 @@ test('a cut that is moved on after it was saved is a second edit, and nobody too
   await bench.reset();
 });
 
+test('keys that come faster than the figure is drawn move a cut from where the one before left it', async ({ page, signInAs }) => {
+  await signInAs('modeller');
+  const bench = new BenchOnPage(page, await readDemoPlaces(page), 'oldest_line_months');
+  await bench.open();
+  const { fine } = await bench.stored();
+  const start = await bench.valueOf(bench.cut(2));
+  const next = fine.edges.find((edge) => edge > start)!;
+  const pressAtOnce = (...keys: string[]): Promise<unknown> => Promise.all(keys.map((key) => page.keyboard.press(key)));
+  await bench.cut(2).focus();
+  await pressAtOnce('ArrowRight', 'ArrowRight', 'ArrowLeft');
+  await expect.poll(() => bench.valueOf(bench.cut(2))).toBe(next);
+  await expect.poll(async () => (await bench.stored()).editList).toMatchObject([{ what: `Cut moved from ${start} to ${next}` }]);
+  // Away and back is no edit.
+  await bench.cut(1).focus();
+  await pressAtOnce('ArrowRight', 'ArrowLeft');
+  await bench.saved();
+  expect((await bench.stored()).edits).toBe(1);
+  await bench.reset();
+});
+
 test('a category is dragged onto another group, and sent there by keys', async ({ page, signInAs }) => {
   await signInAs('modeller');
   const demo = await readDemoPlaces(page);

@@ -1,6 +1,6 @@
 import type { Edit, EditReason, SentEdit } from '@tallystone/contracts/binnings/edits';
 import type { Bins as SavedBins } from '@tallystone/contracts/binnings/bins';
-import type { Bins, EditOf } from '@tallystone/numeric/bench';
+import type { Bins, EditOf, FineClasses } from '@tallystone/numeric/bench';
 
 /** Steps that can be taken back. */
 export const mostSteps = 50;
@@ -8,6 +8,12 @@ export const mostSteps = 50;
 export const oneGesture = 2000; // ms
 
 export type BenchEdit = Omit<SentEdit, 'before' | 'after'> & { readonly before: Bins; readonly after: Bins };
+
+/**
+ * What to do to the bins as they are when it is done; null where it cannot be. A key that follows another one before the figure has been drawn again is
+ * about the bins that the first one left, not about those that are still to be seen.
+ */
+export type MakeEdit = (fine: FineClasses, bins: Bins) => EditOf<Bins> | null;
 
 /** The bench of one characteristic: automatic bins and the edits on them; past and future states are lists of edits as well. */
 export interface History {

@@ -51,6 +51,21 @@ describe('the bench of one characteristic', () => {
     expect([bench.state(), bench.unsaved()]).toEqual(['saved', false]);
   });
 
+  it('edits the bins as they are, and has no edit that changes nothing', async () => {
+    const right = () => bench.edit((fine, now) => (now.kind === 'numeric' ? moveCut(fine, now, 0, 30) : null));
+    expect([right(), right()]).toEqual([true, false]);
+    expect(bench.do({ kind: 'cut moved', what: 'Cut moved from 20 to 30', bins: bins() })).toBe(false);
+    expect(bench.edit((fine, now) => (now.kind === 'numeric' ? moveCut(fine, now, 0, 20) : null))).toBe(true);
+    // Back where it came from in one gesture.
+    expect(bench.history()?.edits).toEqual([]);
+    bench.undo();
+    expect(bins().edges).toEqual([20, 40]);
+    const flushed = bench.flush();
+    await settled();
+    http.expectOne({ method: 'PUT', url }).flush({ ...utilisation, revision: 4 }, tag(4));
+    await flushed;
+  });
+
   it('shows a drag without an edit', () => {
     bench.preview({ ...bins(), edges: [30, 40] });
     expect(bins().edges).toEqual([30, 40]);

@@ -30,6 +30,7 @@ import {
   undo,
   unexplained,
   type History,
+  type MakeEdit,
 } from '../bench/history';
 import { Binnings, type CharacteristicDetail } from './binnings';
 
@@ -137,8 +138,16 @@ export class Bench {
     this.previewOf.set(null);
     const history = this.historyOf();
     if (!edit || !history || !this.editable()) return false;
-    this.change(act(history, edit, crypto.randomUUID(), performance.now()));
+    const next = act(history, edit, crypto.randomUUID(), performance.now());
+    if (next === history) return false;
+    this.change(next);
     return true;
+  }
+
+  /** Edits the bins as they are now. */
+  edit(make: MakeEdit): boolean {
+    const [fine, history] = [this.fine(), this.historyOf()];
+    return this.do(fine && history && make(fine, currentBins(history)));
   }
 
   undo(): void {
@@ -332,9 +341,6 @@ export class Bench {
   }
 
   private onNumeric(make: (fine: FineClasses, bins: NumericBins) => EditOf<NumericBins> | null): boolean {
-    const fine = this.fine();
-    const history = this.historyOf();
-    const bins = history && currentBins(history);
-    return fine && bins?.kind === 'numeric' ? this.do(make(fine, bins)) : false;
+    return this.edit((fine, bins) => (bins.kind === 'numeric' ? make(fine, bins) : null));
   }
 }

@@ -27,8 +27,6 @@ import {
   splitGroup,
   splitNumeric,
   binLabels,
-  type Bins,
-  type EditOf,
   type PartitionName,
 } from '@tallystone/numeric/bench';
 import { firstValueFrom } from 'rxjs';
@@ -42,7 +40,7 @@ import { binWords, metric, moment, plural, woe, written } from '../../../ui/numb
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { Tombstone } from '../../../ui/tombstone';
-import { currentBins } from '../bench/history';
+import { type MakeEdit, currentBins } from '../bench/history';
 import { Bench } from '../data/bench';
 import { Binnings, binningOf, characteristicsOf } from '../data/binnings';
 import { benchFinding, smoothingWords, trendWords } from '../ui/bench-finding';
@@ -275,8 +273,8 @@ export class BenchPage {
     return this.bench.flush();
   }
 
-  protected edit(edit: EditOf<Bins> | null): void {
-    if (!this.bench.do(edit)) return;
+  protected edit(make: MakeEdit): void {
+    if (!this.bench.edit(make)) return;
     this.placing.clear();
     const count = this.coarse().length;
     if ((this.bin() ?? 0) >= count) this.bin.set(null);
@@ -285,27 +283,25 @@ export class BenchPage {
 
   /** Merges the selected bin with the one after it (0) or before it (-1). */
   protected merge(side: 0 | -1): void {
-    const bins = this.bench.bins();
-    const fine = this.bench.fine();
     const bin = this.bin();
-    if (!bins || !fine || bin === null) return;
-    this.edit(bins.kind === 'numeric' ? mergeNumeric(fine, bins, bin + side) : mergeGroups(fine, bins, bin, bin + 1 + 2 * side));
+    if (bin === null) return;
+    this.edit((fine, bins) =>
+      bins.kind === 'numeric' ? mergeNumeric(fine, bins, bin + side) : mergeGroups(fine, bins, bin, bin + 1 + 2 * side),
+    );
   }
 
   protected split(): void {
-    const bins = this.bench.bins();
-    const fine = this.bench.fine();
     const bin = this.bin();
-    if (!bins || !fine || bin === null) return;
+    if (bin === null) return;
     const wish = this.bench.detail()?.constraints ?? null;
-    this.edit(bins.kind === 'numeric' ? splitNumeric(fine, bins, bin, wish) : splitGroup(fine, bins, bin, wish));
+    this.edit((fine, bins) =>
+      bins.kind === 'numeric' ? splitNumeric(fine, bins, bin, wish) : splitGroup(fine, bins, bin, wish),
+    );
   }
 
   protected group(target: number | 'new'): void {
-    const bins = this.bench.bins();
-    const fine = this.bench.fine();
-    if (!fine || bins?.kind !== 'categorical') return;
-    this.edit(groupCategories(fine, bins, [...this.chosen()], target));
+    const chosen = [...this.chosen()];
+    this.edit((fine, bins) => (bins.kind === 'categorical' ? groupCategories(fine, bins, chosen, target) : null));
     this.chosen.set(new Set());
   }
 
@@ -350,16 +346,15 @@ export class BenchPage {
     });
   }
 
-  protected round(): void {
+  protected round(cut = this.cut()): void {
+    this.cut.set(cut);
     const value = this.rounder();
-    if (value !== null) this.placeCut(this.cut(), value);
+    if (value !== null) this.placeCut(cut, value);
   }
 
   protected removeCut(): void {
-    const bins = this.bench.bins();
-    const fine = this.bench.fine();
     const cut = this.cut();
-    if (fine && cut !== null && bins?.kind === 'numeric') this.edit(mergeNumeric(fine, bins, cut));
+    if (cut !== null) this.edit((fine, bins) => (bins.kind === 'numeric' ? mergeNumeric(fine, bins, cut) : null));
   }
 
   protected show(queryParams: Partial<Record<'axis' | 'partition' | 'measure' | 'period', string | null>>): void {

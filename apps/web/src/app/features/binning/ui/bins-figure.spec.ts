@@ -1,6 +1,7 @@
 import { ChangeDetectionStrategy, Component, computed, signal } from '@angular/core';
 import { TestBed } from '@angular/core/testing';
 import { readBench, type Bins, type EditOf } from '@tallystone/numeric/bench';
+import type { MakeEdit } from '../bench/history';
 import { home, utilisation } from '../testing/characteristics';
 import { BinsFigure } from './bins-figure';
 import type { AxisMode } from './geometry';
@@ -36,7 +37,9 @@ class Host {
   readonly edits: EditOf<Bins>[] = [];
   typed = 0;
 
-  take(edit: EditOf<Bins>): void {
+  take(make: MakeEdit): void {
+    const edit = make(this.of().fine, this.bins());
+    if (!edit) return;
     this.edits.push(edit);
     this.bins.set(edit.bins);
   }
@@ -90,6 +93,34 @@ describe('the binning figure', () => {
     await press(cuts()[1], 'PageDown');
     expect(cuts()[1].getAttribute('aria-valuenow')).toBe('40');
     expect(cuts()[1].getAttribute('aria-valuetext')).toMatch(/^40; bad rate .* below, .* from there on; IV /);
+  });
+
+  it('edits the bins as they are when keys come faster than it is drawn', async () => {
+    const { host, cuts, fixture } = await setUp();
+    const [cut] = cuts();
+    for (const key of ['ArrowRight', 'ArrowLeft', 'ArrowLeft'])
+      cut.dispatchEvent(new KeyboardEvent('keydown', { key, bubbles: true, cancelable: true }));
+    expect(cut.getAttribute('aria-valuenow')).toBe('20');
+    await fixture.whenStable();
+    expect(host.edits.map(({ what }) => what)).toEqual([
+      'Cut moved from 20 to 30',
+      'Cut moved from 30 to 20',
+      'Cut moved from 20 to 10',
+    ]);
+    expect(cut.getAttribute('aria-valuenow')).toBe('10');
+  });
+
+  it('sends a category to the group that is seen, whatever its number has become', async () => {
+    const { host, root, fixture } = await setUp(home);
+    const press = (name: string, key: string) =>
+      root
+        .querySelector(`[data-category="${name}"]`)!
+        .dispatchEvent(new KeyboardEvent('keydown', { key, bubbles: true, cancelable: true }));
+    // Apart from rent, parents have a group of their own before it: the last of three groups is now the last of four.
+    press('parents', 'n');
+    press('rent', '3');
+    await fixture.whenStable();
+    expect(host.bins()).toMatchObject({ groups: [['owner'], ['parents'], ['rent', 'other']] });
   });
 
   it('takes a cut out with Delete and asks for a value on Enter', async () => {

@@ -16,7 +16,6 @@ import {
   groupCategories,
   mergeNumeric,
   moveCut,
-  rounderCut,
   type BenchReading,
   type Bins,
   type EditOf,
@@ -25,6 +24,7 @@ import {
   type PartitionName,
 } from '@tallystone/numeric/bench';
 import { axisBottom, axisLeft } from 'd3-axis';
+import type { MakeEdit } from '../bench/history';
 import { AxisDirective } from '../../../ui/axis';
 import { ElementWidth } from '../../../ui/element-width';
 import { FigureFrame, FigurePoint } from '../../../ui/figure-frame';
@@ -86,11 +86,11 @@ export class BinsFigure {
 
   /** Where a drag would lead; null when it is over. */
   readonly previewed = output<Bins | null>();
-  readonly edited = output<EditOf<Bins>>();
+  readonly edited = output<MakeEdit>();
   /** A value is to be typed for the selected cut. */
   readonly typing = output<void>();
-  /** A cut is to go to exactly this value, which may lie inside a fine class. */
-  readonly placed = output<{ cut: number; value: number }>();
+  /** A cut is to go to a round number, which may lie inside a fine class. */
+  readonly rounding = output<number>();
   readonly binKey = output<{ bin: number; event: KeyboardEvent }>();
 
   private readonly injector = inject(Injector);
@@ -186,11 +186,10 @@ export class BinsFigure {
   protected keyOnCut(event: KeyboardEvent, cut: number): void {
     const bins = this.bins();
     if (!this.editable() || bins.kind !== 'numeric' || event.ctrlKey || event.metaKey || event.altKey) return;
-    const fine = this.fine();
     switch (event.key) {
       case 'Delete':
       case 'Backspace':
-        this.emit(mergeNumeric(fine, bins, cut));
+        this.editCuts((fine, now) => mergeNumeric(fine, now, cut));
         this.focusBeside(cut);
         event.preventDefault();
         return;
@@ -199,13 +198,11 @@ export class BinsFigure {
         this.typing.emit();
         event.preventDefault();
         return;
-      case 'r': {
-        const value = rounderCut(fine, bins, cut);
-        if (value !== null) this.placed.emit({ cut, value });
+      case 'r':
+        this.rounding.emit(cut);
         event.preventDefault();
         event.stopPropagation();
         return;
-      }
       case 'Escape':
         this.letGo();
         return;
@@ -213,8 +210,10 @@ export class BinsFigure {
     const moves = cutMoves[event.key];
     if (!moves) return;
     event.preventDefault();
-    const edge = moves(fine, bins, cut);
-    if (edge !== null) this.emit(moveCut(fine, bins, cut, edge));
+    this.editCuts((fine, now) => {
+      const edge = moves(fine, now, cut);
+      return edge === null ? null : moveCut(fine, now, cut, edge);
+    });
   }
 
   /** A cut that is gone leaves the focus to the one that stands in its place, or before it; the last one leaves it to the figure. */
@@ -256,7 +255,7 @@ export class BinsFigure {
     if (!dragged.moved) return;
     const edge = this.nearest(dragged, event);
     this.previewed.emit(null);
-    if (edge !== null) this.emit(moveCut(this.fine(), dragged.bins, dragged.cut, edge));
+    if (edge !== null) this.editCuts((fine, now) => moveCut(fine, now, dragged.cut, edge));
   }
 
   /** Ends a drag where it began. */
@@ -332,20 +331,32 @@ export class BinsFigure {
       this.choose(name);
       return;
     }
-    const bins = this.bins();
     const over = this.overAt(this.atX(event));
-    if (bins.kind === 'categorical' && over !== null) this.emit(groupCategories(this.fine(), bins, carried.categories, over));
+    if (over !== null) this.regroup(carried.categories, over);
   }
 
   private group(target: number | 'new', name: string): void {
-    const bins = this.bins();
-    if (!this.editable() || bins.kind !== 'categorical') return;
-    this.emit(groupCategories(this.fine(), bins, this.chosen().size > 0 ? [...this.chosen()] : [name], target));
+    if (this.editable()) this.regroup(this.chosen().size > 0 ? [...this.chosen()] : [name], target);
   }
 
-  private emit(edit: EditOf<Bins> | null): void {
-    if (edit) this.edited.emit(edit);
-    if (edit && edit.kind !== 'cut moved') this.chosen.set(new Set());
+  /** @param target as it is numbered in what is drawn */
+  private regroup(categories: readonly string[], target: number | 'new'): void {
+    const drawn = this.bins();
+    if (drawn.kind !== 'categorical') return;
+    const member = target === 'new' ? null : drawn.groups[target]?.[0];
+    if (member === undefined) return;
+    const make: MakeEdit = (fine, now) => {
+      if (now.kind !== 'categorical') return null;
+      const place = member === null ? 'new' : now.groups.findIndex((group) => group.includes(member));
+      return groupCategories(fine, now, categories, place);
+    };
+    const done = make(this.fine(), drawn) !== null;
+    this.edited.emit(make);
+    if (done) this.chosen.set(new Set());
+  }
+
+  private editCuts(make: (fine: FineClasses, bins: NumericBins) => EditOf<NumericBins> | null): void {
+    this.edited.emit((fine, bins) => (bins.kind === 'numeric' ? make(fine, bins) : null));
   }
 
   private nearest({ cut, bins, fromX }: Dragged, event: PointerEvent): number | null {

@@ -2,16 +2,17 @@ import { ChangeDetectionStrategy, Component, computed, input, output } from '@an
 import { MatFormFieldModule } from '@angular/material/form-field';
 import { MatSelectModule } from '@angular/material/select';
 import {
+  binLabels,
   coarseCount,
   moveMissing,
   moveSpecial,
   moveUnseen,
   type BenchReading,
   type Bins,
-  type EditOf,
   type FineClasses,
   type Place,
 } from '@tallystone/numeric/bench';
+import type { MakeEdit } from '../bench/history';
 
 interface PlaceRow {
   readonly label: string;
@@ -52,7 +53,7 @@ export class Places {
   readonly bins = input.required<Bins>();
   readonly reading = input.required<BenchReading>();
   readonly editable = input(false);
-  readonly edited = output<EditOf<Bins>>();
+  readonly edited = output<MakeEdit>();
 
   protected readonly coarse = computed(() =>
     this.reading()
@@ -63,20 +64,19 @@ export class Places {
   protected readonly rows = computed(() => {
     const fine = this.fine();
     const bins = this.bins();
-    const coarse = this.coarse();
     const own = { apart: 'own' as const, apartLabel: 'A bin of its own' };
-    const name = (place: Place | 'neutral'): string => (typeof place === 'number' ? coarse[place] : '');
+    const name = (now: Bins, place: Place | 'neutral'): string => (typeof place === 'number' ? binLabels(fine, now)[place] : '');
     const rows: PlaceRow[] = fine.special.map((label, code) => ({
       label,
       place: bins.special[code],
       ...own,
-      move: (place) => place !== 'neutral' && this.send(moveSpecial(fine, bins, code, place, name(place))),
+      move: (place) => place !== 'neutral' && this.edited.emit((_, now) => moveSpecial(fine, now, code, place, name(now, place))),
     }));
     rows.push({
       label: 'Missing values',
       place: bins.missing,
       ...own,
-      move: (place) => place !== 'neutral' && this.send(moveMissing(bins, place, name(place))),
+      move: (place) => place !== 'neutral' && this.edited.emit((_, now) => moveMissing(now, place, name(now, place))),
     });
     if (bins.kind === 'categorical') {
       rows.push({
@@ -84,13 +84,11 @@ export class Places {
         place: bins.unseen,
         apart: 'neutral',
         apartLabel: 'Stay neutral: WOE 0',
-        move: (place) => place !== 'own' && this.send(moveUnseen(bins, place, name(place))),
+        move: (place) =>
+          place !== 'own' &&
+          this.edited.emit((_, now) => (now.kind === 'categorical' ? moveUnseen(now, place, name(now, place)) : null)),
       });
     }
     return rows;
   });
-
-  private send(edit: EditOf<Bins> | null): void {
-    if (edit) this.edited.emit(edit);
-  }
 }
