@@ -13,6 +13,7 @@ import {
   share,
   signed,
   significant,
+  valueWords,
   woe,
   written,
 } from './numbers';
@@ -78,6 +79,12 @@ describe('numbers', () => {
     expect(binWords('12450 and over')).toBe('12\u202F450 and over');
     expect(binWords('over 1e-7 to 25')).toBe('over 1e\u22127 to 25');
     for (const label of ['35-44', 'broker, web-2000', 'no bureau record', 'missing']) expect(binWords(label)).toBe(label);
+  });
+
+  it('write the values of a sentence, and leave words with digits alone', () => {
+    expect(valueWords('Cut moved from 18762.23 to -244.')).toBe('Cut moved from 18\u202F762.23 to \u2212244.');
+    expect(valueWords('Cuts as they were: 1000, 25000.5, 1e-7')).toBe('Cuts as they were: 1\u202F000, 25\u202F000.5, 1e\u22127');
+    for (const sentence of ['web-2000 and 35-44', 'Nothing at all']) expect(valueWords(sentence)).toBe(sentence);
   });
 
   it('keep a date on one line', () => {

@@ -99,6 +99,10 @@ export function written(value: number | string): string {
 /** The label of a bin, as results state it, with its numbers as they are read: "-244 to under 1250" is "−244 to under 1 250". A category stays. */
 export const binWords = (label: string): string => (range.test(label) ? label.replace(new RegExp(numeral, 'g'), written) : label);
 
+/** A sentence in which every number is a value: "Cut moved from 18762.23 to -244" is "Cut moved from 18 762.23 to −244". */
+export const valueWords = (sentence: string): string =>
+  sentence.replace(new RegExp(`(?<![\\w.,-])${numeral}(?![\\w-])`, 'g'), written);
+
 const dateFormat = new Intl.DateTimeFormat('en-GB', { day: 'numeric', month: 'long', year: 'numeric' });
 const momentFormat = new Intl.DateTimeFormat('en-GB', {
   day: 'numeric',

@@ -2,12 +2,10 @@ import { Injectable, computed, inject, signal } from '@angular/core';
 import type { EditReason } from '@tallystone/contracts/binnings/edits';
 import {
   addCut,
-  benchWarnings,
   type MonthlyDrift,
   moveCut,
   readBench,
   type BenchReading,
-  type BenchWarning,
   type Bins,
   type EditOf,
   type FineClasses,
@@ -70,11 +68,12 @@ export class Bench {
   private readonly stateOf = signal<SaveState>('saved');
   private readonly problemOf = signal<unknown>(null);
   private readonly savedAtOf = signal<string | null>(null);
-
   private readonly driftOf = signal<MonthlyDrift | null>(null);
 
   readonly detail = this.detailOf.asReadonly();
   readonly history = this.historyOf.asReadonly();
+  /** How far WOE moves between months; null before that is known. */
+  readonly drift = this.driftOf.asReadonly();
   readonly state = this.stateOf.asReadonly();
   readonly problem = this.problemOf.asReadonly();
   readonly savedAt = this.savedAtOf.asReadonly();
@@ -97,11 +96,6 @@ export class Bench {
     const fine = this.fine();
     const bins = this.bins();
     return fine && bins ? readBench(fine, bins) : null;
-  });
-  readonly warnings = computed<readonly BenchWarning[]>(() => {
-    const reading = this.reading();
-    const detail = this.detailOf();
-    return reading && detail ? benchWarnings(reading, detail.constraints, this.driftOf()) : [];
   });
 
   async load(binningId: string, characteristicId: string): Promise<void> {

@@ -43,10 +43,11 @@ import { Tombstone } from '../../../ui/tombstone';
 import { type MakeEdit, currentBins } from '../bench/history';
 import { Bench } from '../data/bench';
 import { Binnings, binningOf, characteristicsOf } from '../data/binnings';
-import { benchFinding, smoothingWords, trendWords } from '../ui/bench-finding';
+import { benchFinding, smoothingWords, trendWords, warningsOf } from '../ui/bench-finding';
 import { BenchMonths } from './bench-months';
 import { BinsFigure } from '../ui/bins-figure';
 import { EditList, type KnownEdit } from '../ui/edit-list';
+import { editWords, notCarriedWords } from '../ui/edit-words';
 import { type AxisMode, layOut } from '../ui/geometry';
 import { type Measure, type Span, asMeasure, asSpan } from '../ui/months-view';
 import { OutOfTimeCover } from '../ui/out-of-time-cover';
@@ -118,10 +119,16 @@ export class BenchPage {
   private readonly asked = signal(false);
 
   protected readonly column = computed(() => this.bench.detail()?.column ?? 'Bins');
+  protected readonly editWords = editWords;
+  protected readonly notCarriedWords = notCarriedWords;
+  protected readonly warnings = computed(() => {
+    const [reading, detail] = [this.bench.reading(), this.bench.detail()];
+    return reading && detail ? warningsOf(reading, detail.constraints, this.bench.drift()) : [];
+  });
   protected readonly finding = computed(() => {
     const fine = this.bench.fine();
     const reading = this.bench.reading();
-    return fine && reading ? benchFinding(fine, reading, this.bench.warnings()) : null;
+    return fine && reading ? benchFinding(fine, reading, this.warnings()) : null;
   });
   /** Spread of IV over resamples; recalculated only when bins are settled, not while a cut is on its way. */
   private readonly spread = computed(() => {
@@ -415,12 +422,12 @@ export class BenchPage {
       theirs: {
         informationValue: theirs.informationValue,
         bins: binLabels(theirs.fine, theirs.current),
-        edits: theirs.editList.map(({ what, by }) => `${what} (${by})`),
+        edits: theirs.editList,
       },
       mine: {
         informationValue: readBench(theirs.fine, mine).informationValue,
         bins: binLabels(theirs.fine, mine),
-        edits: history.edits.map(({ what }) => what),
+        edits: history.edits,
       },
     };
     const reference = this.injector

@@ -7,6 +7,7 @@ import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { SortInAddress } from '../../../ui/sort-in-address';
 import { type BinningHistory, historyOf } from '../data/binnings';
+import { editWords } from '../ui/edit-words';
 import { changeWords, endWords, historyFinding, stateWords } from '../ui/history-words';
 import { reasonWords } from '../ui/reason-words';
 
@@ -65,7 +66,7 @@ export class HistoryPage {
       link: (row) => ['..', row.characteristicId],
       sortable: true,
     },
-    { key: 'what', label: 'Edit', value: (row) => row.what, width: 36 },
+    { key: 'what', label: 'Edit', value: (row) => row.what, format: editWords, width: 36 },
     { key: 'by', label: 'By', value: (row) => row.by, sortable: true },
     { key: 'at', label: 'When', kind: 'moment', value: (row) => row.at, sortable: true },
     { key: 'reason', label: 'Why', value: (row) => (row.reason ? reasonWords(row.reason) : null), width: 32 },

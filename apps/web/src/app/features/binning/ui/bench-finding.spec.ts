@@ -1,6 +1,6 @@
 import { benchWarnings, readBench, type NumericBins } from '@tallystone/numeric/bench';
 import { home, utilisation } from '../testing/characteristics';
-import { benchFinding, smoothingWords, trendWords } from './bench-finding';
+import { benchFinding, smoothingWords, trendWords, warningsOf } from './bench-finding';
 
 const say = (fine: typeof utilisation.fine, bins: typeof utilisation.current): string => {
   const reading = readBench(fine, bins);
@@ -51,5 +51,16 @@ describe('what WOE is calculated with', () => {
   it('is the amount that the figures were calculated with', () => {
     const reading = readBench({ ...fine, holdOut: none }, current, { amount: 0.25, when: 'zero-cell' });
     expect(smoothingWords(reading, 'holdOut')).toContain('0.25 is added');
+  });
+});
+
+describe('what is to be looked at', () => {
+  it('names bins with numbers as they are read elsewhere', () => {
+    const bins: NumericBins = { kind: 'numeric', edges: [20000, 90000], special: ['own'], missing: 'own' };
+    const fine = { ...utilisation.fine, edges: utilisation.fine.edges.map((edge) => edge * 1000) };
+    const limits = { smallestShare: 0.15, smallestGoods: 1, smallestBads: 1 };
+    const [small] = warningsOf(readBench(fine, bins), limits, null);
+    expect(small).toMatchObject({ code: 'small-bin', bins: [2] });
+    expect(small.message).toMatch(/: 90\u202F000 and over\.$/);
   });
 });

@@ -1,5 +1,19 @@
-import type { BenchReading, BenchWarning, FineClasses, PartitionName } from '@tallystone/numeric/bench';
-import { share, written } from '../../../ui/numbers';
+import {
+  benchWarnings,
+  type BenchReading,
+  type BenchWarning,
+  type FineClasses,
+  type MonthlyDrift,
+  type PartitionName,
+  type SizeLimits,
+} from '@tallystone/numeric/bench';
+import { binWords, share, written } from '../../../ui/numbers';
+
+/** What is to be looked at, with the numbers of bins as they are read. */
+export function warningsOf(reading: BenchReading, limits: SizeLimits, drift: MonthlyDrift | null): BenchWarning[] {
+  const bins = reading.bins.map((bin) => (bin.kind === 'cut' ? { ...bin, label: binWords(bin.label) } : bin));
+  return benchWarnings({ ...reading, bins }, limits, drift);
+}
 
 /** The one sentence over a characteristic: how risk runs, whether it holds elsewhere, what is small. */
 export function benchFinding(fine: FineClasses, reading: BenchReading, warnings: readonly BenchWarning[]): string {

@@ -54,6 +54,13 @@ describe('the list of edits by hand', () => {
     fixture.componentInstance.began.subscribe((id) => began.push(id));
   });
 
+  it('has numbers as they are read elsewhere', async () => {
+    await show([edit('e1', 'Cut moved from 18762.23 to 19000')]);
+    expect((fixture.nativeElement as HTMLElement).querySelector('.what')?.textContent).toContain(
+      'Cut moved from 18\u202F762.23 to 19\u202F000',
+    );
+  });
+
   it('says that there are none', async () => {
     await show([]);
     expect((fixture.nativeElement as HTMLElement).textContent).toContain('The bins are as they were classed automatically.');

@@ -5,6 +5,7 @@ import { MatSelectModule } from '@angular/material/select';
 import type { EditReason } from '@tallystone/contracts/binnings/edits';
 import type { BenchEdit } from '../bench/history';
 import { moment } from '../../../ui/numbers';
+import { editWords } from './edit-words';
 import { reasonWords, reasons } from './reason-words';
 
 export interface KnownEdit {
@@ -23,7 +24,7 @@ export interface KnownEdit {
     @for (edit of latestFirst(); track edit.id) {
       <div class="edit">
         <div class="what">
-          <span>{{ edit.what }}</span>
+          <span>{{ editWords(edit) }}</span>
           @if (known().get(edit.id); as made) {
             <span class="ts-caption"
               >{{ made.by }}, {{ moment(made.at) }}{{ made.from ? '; carried over from ' + made.from : '' }}</span
@@ -87,6 +88,7 @@ export class EditList {
 
   protected readonly reasons = reasons;
   protected readonly moment = moment;
+  protected readonly editWords = editWords;
   protected readonly latestFirst = computed(() => [...this.edits()].reverse());
 
   protected choose(id: string, code: EditReason['code']): void {

@@ -1,6 +1,7 @@
 import type { Bins } from '@tallystone/contracts/binnings/bins';
 import type { BinningHistory } from '@tallystone/contracts/binnings/schema';
 import { moment, plural, written } from '../../../ui/numbers';
+import { notCarriedWords } from './edit-words';
 
 /** An edit in the history of a binning, in words. */
 
@@ -23,8 +24,9 @@ export function stateWords({ inEffect, notCarried, carriedFrom, ended }: Histori
 }
 
 /** Who took the edit back, when and why; why it could not be carried over; nothing for one in effect. */
-export function endWords({ notCarried, ended }: HistoricEdit): string | null {
-  if (notCarried !== null) return notCarried;
+export function endWords(edit: HistoricEdit): string | null {
+  const { notCarried, ended } = edit;
+  if (notCarried !== null) return notCarriedWords(edit);
   if (!ended) return null;
   return `${ended.by}, ${moment(ended.at)}${ended.reason ? `: ${ended.reason}` : ''}`;
 }

@@ -12,6 +12,7 @@ import {
   type FineClasses,
   type Place,
 } from '@tallystone/numeric/bench';
+import { binWords } from '../../../ui/numbers';
 import type { MakeEdit } from '../bench/history';
 
 interface PlaceRow {
@@ -58,7 +59,7 @@ export class Places {
   protected readonly coarse = computed(() =>
     this.reading()
       .bins.slice(0, coarseCount(this.bins()))
-      .map(({ label }) => label),
+      .map(({ label }) => binWords(label)),
   );
 
   protected readonly rows = computed(() => {

@@ -1,13 +1,15 @@
 import { ChangeDetectionStrategy, Component, inject } from '@angular/core';
 import { MatButtonModule } from '@angular/material/button';
 import { MAT_DIALOG_DATA, MatDialogModule } from '@angular/material/dialog';
-import { moment, woe } from '../../../ui/numbers';
+import { binWords, moment, woe } from '../../../ui/numbers';
+import { type SaidEdit, editWords } from './edit-words';
 
 /** One side: its bins with what they say, and the edits that made them. */
 export interface StaleSide {
   readonly informationValue: number;
   readonly bins: readonly string[];
-  readonly edits: readonly string[];
+  /** With who made each, where that is somebody else. */
+  readonly edits: readonly (SaidEdit & { readonly by?: string })[];
 }
 
 export interface StaleQuestion {
@@ -39,14 +41,14 @@ export type StaleAnswer = 'theirs' | 'mine';
             <p class="ts-caption">IV {{ woe(side.of.informationValue) }}</p>
             <ol>
               @for (bin of side.of.bins; track $index) {
-                <li>{{ bin }}</li>
+                <li>{{ binWords(bin) }}</li>
               }
             </ol>
             @if (side.of.edits.length > 0) {
               <p class="ts-caption">Edits</p>
               <ul>
                 @for (edit of side.of.edits; track $index) {
-                  <li>{{ edit }}</li>
+                  <li>{{ editWords(edit) }}{{ edit.by ? ' (' + edit.by + ')' : '' }}</li>
                 }
               </ul>
             }
@@ -80,6 +82,8 @@ export class StaleDialog {
   protected readonly asked = inject<StaleQuestion>(MAT_DIALOG_DATA);
   protected readonly when = moment(this.asked.at);
   protected readonly woe = woe;
+  protected readonly binWords = binWords;
+  protected readonly editWords = editWords;
   protected readonly sides = [
     { title: `Theirs: ${this.asked.by}`, of: this.asked.theirs },
     { title: 'Mine', of: this.asked.mine },
