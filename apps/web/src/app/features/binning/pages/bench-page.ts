@@ -32,11 +32,12 @@ import {
 import { firstValueFrom } from 'rxjs';
 import { CurrentModel } from '../../../core/current-model';
 import { columnLabels } from '../../../core/column-labels';
+import { Problem } from '../../../core/http/problem';
 import { Shortcuts } from '../../../core/shortcuts';
 import { Task } from '../../../core/task';
 import { warnBeforeUnload } from '../../../core/unsaved-changes';
 import { DecisionNotice } from '../../../ui/decision-notice';
-import { binWords, metric, moment, plural, woe, written } from '../../../ui/numbers';
+import { binWords, metric, moment, plural, valueWords, woe, written } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { Tombstone } from '../../../ui/tombstone';
@@ -56,6 +57,9 @@ import { Places } from '../ui/places';
 import { PooledNote } from '../ui/pooled-note';
 import type { ReclassAnswer, ReclassQuestion } from '../ui/reclass-dialog';
 import type { StaleAnswer, StaleQuestion } from '../ui/stale-dialog';
+
+/** Why a cut cannot be where it was put, in one sentence. */
+class NotPlaced extends Error {}
 
 /** The bench of one characteristic. */
 @Component({
@@ -116,6 +120,13 @@ export class BenchPage {
   protected readonly writing = signal<string | null>(null);
   protected readonly placing = new Task();
   protected readonly changing = new Task();
+  /** Why a cut cannot be where it was put, which is said beside the field; null where something else went wrong. */
+  protected readonly placeWords = computed(() => {
+    const error = this.placing.error();
+    if (error instanceof NotPlaced) return error.message;
+    const said = error instanceof Problem ? error.forField('edge') : undefined;
+    return said ? valueWords(said.message) : null;
+  });
   private readonly asked = signal(false);
 
   protected readonly column = computed(() => this.bench.detail()?.column ?? 'Bins');
@@ -344,9 +355,9 @@ export class BenchPage {
     void this.placing.run(async () => {
       const done = cut === null ? await this.bench.addCutAt(value) : await this.bench.moveCutTo(cut, value);
       if (!done)
-        throw new Error(
+        throw new NotPlaced(
           cut === null
-            ? `There is a cut at ${value} already.`
+            ? `There is a cut at ${written(value)} already.`
             : 'A cut stays between its neighbours, and this one is there already or would pass them.',
         );
       if (cut === null) added?.();
