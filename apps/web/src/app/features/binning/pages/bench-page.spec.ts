@@ -7,7 +7,7 @@ import type { CharacteristicDetail } from '@tallystone/contracts/binnings/schema
 import { problemInterceptor } from '../../../core/http/interceptors';
 import { provideIcons } from '../../../ui/register-icons';
 import { firstBinning, listOf } from '../testing/binnings';
-import { utilisation } from '../testing/characteristics';
+import { home, utilisation } from '../testing/characteristics';
 import { BenchPage } from './bench-page';
 
 /** The same with values in thousands, as amounts have them. */
@@ -139,5 +139,35 @@ describe('the page of one characteristic', () => {
     await settled();
     expect(words(page().querySelector('.saved'))).toMatch(/^Saved /);
     expect(page().querySelector('[role=alert]')).toBeNull();
+  });
+
+  it('names the categories that are chosen, some dozen of them', async () => {
+    const jobs = Array.from({ length: 15 }, (_, place) => `Job of kind ${place + 1}`);
+    const counts = (many: number): number[] => [...Array<number>(jobs.length).fill(many), 0, 0];
+    const groups = jobs.map((job) => [job]);
+    await open({
+      ...home,
+      current: { ...home.current, kind: 'categorical', groups, unseen: 'neutral' },
+      automatic: { ...home.automatic, kind: 'categorical', groups, unseen: 'neutral' },
+      fine: {
+        ...home.fine,
+        categories: jobs,
+        development: { rows: counts(100), goods: counts(80), bads: counts(20) },
+        holdOut: { rows: counts(50), goods: counts(40), bads: counts(10) },
+      },
+    });
+    const choose = async (name: string): Promise<void> => {
+      page()
+        .querySelector(`[data-category="${name}"]`)!
+        .dispatchEvent(new KeyboardEvent('keydown', { key: ' ', bubbles: true, cancelable: true }));
+      await settled();
+    };
+    await choose(jobs[3]);
+    await choose(jobs[1]);
+    expect(words(page().querySelector('.chosen-names'))).toBe('2 categories chosen: Job of kind 4, Job of kind 2');
+    for (const job of jobs) if (job !== jobs[3] && job !== jobs[1]) await choose(job);
+    expect(words(page().querySelector('.chosen-names'))).toMatch(
+      /^15 categories chosen: Job of kind 4, Job of kind 2, .*Job of kind 12 and 3 more$/,
+    );
   });
 });

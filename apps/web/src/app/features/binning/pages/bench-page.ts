@@ -37,7 +37,7 @@ import { Shortcuts } from '../../../core/shortcuts';
 import { Task } from '../../../core/task';
 import { warnBeforeUnload } from '../../../core/unsaved-changes';
 import { DecisionNotice } from '../../../ui/decision-notice';
-import { binWords, metric, moment, plural, valueWords, woe, written } from '../../../ui/numbers';
+import { binWords, count, metric, moment, plural, valueWords, woe, written } from '../../../ui/numbers';
 import { PageHeader } from '../../../ui/page-header';
 import { ProblemList } from '../../../ui/problem-list';
 import { Tombstone } from '../../../ui/tombstone';
@@ -57,6 +57,9 @@ import { Places } from '../ui/places';
 import { PooledNote } from '../ui/pooled-note';
 import type { ReclassAnswer, ReclassQuestion } from '../ui/reclass-dialog';
 import type { StaleAnswer, StaleQuestion } from '../ui/stale-dialog';
+
+/** Chosen categories that are named. */
+const mostNamed = 12;
 
 /** Why a cut cannot be where it was put, in one sentence. */
 class NotPlaced extends Error {}
@@ -243,7 +246,13 @@ export class BenchPage {
     const value = this.rounder();
     return value === null ? 'Round already' : `Round to ${written(value)}`;
   });
-  protected readonly chosenWords = computed(() => `${plural(this.chosen().size, 'category', 'categories')} chosen`);
+  /** How many categories are chosen, and which: their labels in the figure may be shortened. */
+  protected readonly chosenWords = computed(() => {
+    const names = [...this.chosen()];
+    const more = names.length - mostNamed;
+    const listed = names.slice(0, mostNamed).join(', ') + (more > 0 ? ` and ${count(more)} more` : '');
+    return `${plural(names.length, 'category', 'categories')} chosen: ${listed}`;
+  });
   protected readonly neighbours = computed(() => {
     const list = this.list.hasValue() ? this.list.value().characteristics : [];
     const at = list.findIndex(({ id }) => id === this.characteristicId());

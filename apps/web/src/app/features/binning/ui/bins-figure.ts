@@ -35,6 +35,7 @@ import { cutMoves, edgeLetGo, reachOf } from './cut-moves';
 import { figuresTable } from './figures-table';
 import { type AxisMode, type DrawnCut, categoryOrder, ladderScale, layOut, notchedLine, shownLabels, sizes } from './geometry';
 import { ladderOf } from './ladder';
+import { shortened } from './shortened';
 
 interface Dragged {
   readonly pointer: number;
@@ -152,16 +153,10 @@ export class BinsFigure {
     const fine = this.fine();
     const drawn = new Map(this.geometry().classes.map((one) => [one.slot, one]));
     const step = Math.max(1, (this.geometry().axis[1] - this.geometry().axis[0]) / Math.max(1, fine.categories.length));
+    const short = shortened(fine.categories, Math.max(3, Math.floor(step / 7)));
     return categoryOrder(fine, this.bins()).map((slot) => {
       const name = fine.categories[slot];
-      const room = Math.max(3, Math.floor(step / 7));
-      return {
-        name,
-        slot,
-        x: drawn.get(slot)?.x ?? 0,
-        width: step,
-        short: name.length > room ? `${name.slice(0, room - 1)}…` : name,
-      };
+      return { name, slot, x: drawn.get(slot)?.x ?? 0, width: step, short: short.get(name) ?? name };
     });
   });
 
