@@ -390,8 +390,9 @@ describe('the binning figure', () => {
     const width = Number(svg.getAttribute('width'));
     svg.getBoundingClientRect = () => ({ left: 0, width, top: 0, height: 100 }) as DOMRect;
     const category = (name: string) => root.querySelector(`[data-category="${name}"]`) as SVGElement;
-    const pointer = async (type: string, name: string, clientX: number) => {
-      category(name).dispatchEvent(Object.assign(new MouseEvent(type, { clientX, button: 0, bubbles: true }), { pointerId: 1 }));
+    const pointer = async (type: string, name: string, clientX: number, clientY = 0) => {
+      const event = new MouseEvent(type, { clientX, clientY, button: 0, bubbles: true });
+      category(name).dispatchEvent(Object.assign(event, { pointerId: 1 }));
       await fixture.whenStable();
     };
     const x = (name: string): number => Number(category(name).querySelector('text')?.getAttribute('x'));
@@ -414,6 +415,40 @@ describe('the binning figure', () => {
     await pointer('pointermove', 'other', width - 40);
     await pointer('pointerup', 'other', width - 40);
     expect(host.edits).toHaveLength(1);
+  });
+
+  it('keeps the place for a new group in sight of a figure that is scrolled, and no group that is out of sight takes anything', async () => {
+    const { host, root, category, pointer } = await dragging();
+    const svg = root.querySelector('svg[viewBox^="0 0"]') as SVGSVGElement;
+    const width = Number(svg.getAttribute('width'));
+    // The frame shows 400 pixels from 200 on; the drawing begins 250 before that.
+    const frame = svg.closest<HTMLElement>('.chart')!;
+    frame.style.overflowX = 'auto';
+    Object.defineProperties(frame, { scrollWidth: { value: width }, clientWidth: { value: 400 } });
+    frame.scrollLeft = 250;
+    frame.getBoundingClientRect = () => ({ left: 200, right: 600, top: 0, bottom: 600, width: 400 }) as DOMRect;
+    svg.getBoundingClientRect = () => ({ left: -50, width, top: 0, height: 600 }) as DOMRect;
+    const start = Number(category('other').querySelector('text')?.getAttribute('x')) - 50;
+    await pointer('pointerdown', 'other', start);
+    await pointer('pointermove', 'other', 400);
+    const place = () => root.querySelector('.apart')!;
+    const at = (name: string): number => Number(place().getAttribute(name));
+    expect([at('x') - 250, at('x') - 250 + at('width')]).toEqual([1, 101]);
+    // Beyond the frame lies the group of owners, which cannot be seen.
+    await pointer('pointermove', 'other', 150);
+    expect(place().classList).not.toContain('over');
+    await pointer('pointerup', 'other', 150);
+    expect(host.edits).toEqual([]);
+    // Above the place for a new group the groups behind it can be reached.
+    await pointer('pointerdown', 'parents', 300);
+    await pointer('pointermove', 'parents', 240);
+    expect(place().classList).not.toContain('over');
+    await pointer('pointermove', 'parents', 240, at('y') + 10);
+    expect(place().classList).toContain('over');
+    await pointer('pointerup', 'parents', 240, at('y') + 10);
+    expect(host.edits).toMatchObject([
+      { kind: 'category set apart', bins: { groups: [['owner'], ['parents'], ['rent'], ['other']] } },
+    ]);
   });
 
   it('lets go of categories with Escape: what is dragged first, then what is chosen', async () => {

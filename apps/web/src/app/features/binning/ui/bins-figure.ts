@@ -1,6 +1,7 @@
 import {
   ChangeDetectionStrategy,
   Component,
+  DestroyRef,
   type ElementRef,
   Injector,
   afterNextRender,
@@ -31,6 +32,7 @@ import { FigureFrame, FigurePoint } from '../../../ui/figure-frame';
 import { count, share, woe, written } from '../../../ui/numbers';
 import { partitionPath } from '../../../ui/partition-mark';
 import { BinsTable } from './bins-table';
+import { EdgeScroll, frameOf } from './edge-scroll';
 import { cutMoves, edgeLetGo, reachOf } from './cut-moves';
 import { figuresTable } from './figures-table';
 import { type AxisMode, type DrawnCut, categoryOrder, ladderScale, layOut, notchedLine, shownLabels, sizes } from './geometry';
@@ -47,11 +49,17 @@ interface Dragged {
   readonly bins: NumericBins;
 }
 
+type Pointer = Pick<PointerEvent, 'clientX' | 'clientY'>;
+
 interface DraggedCategory {
   readonly pointer: number;
   readonly categories: readonly string[];
   readonly fromX: number;
+  /** Where the pointer is. */
+  readonly at: Pointer;
   readonly moved: boolean;
+  /** Pixels of the drawing that are out of sight at the left. */
+  readonly hidden: number;
   /** Group under the pointer, or the empty space beside the groups, where a new one is made. */
   readonly over: number | 'new' | null;
 }
@@ -100,6 +108,11 @@ export class BinsFigure {
   protected readonly dragged = signal<Dragged | null>(null);
   protected readonly carried = signal<DraggedCategory | null>(null);
   private readonly focusedCategory = signal<string | null>(null);
+  /** Brings parts of a wide figure under the pointer that cannot be seen where it is dragged from. */
+  private readonly scroll = new EdgeScroll(() => {
+    const carried = this.carried();
+    if (carried) this.carryTo(carried, carried.at);
+  });
 
   protected readonly sizes = sizes;
   protected readonly count = count;
@@ -163,6 +176,18 @@ export class BinsFigure {
   protected readonly ladder = computed(() => ladderOf(this.geometry().columns, this.reading(), this.scale()));
   /** The same numbers for those who read. */
   protected readonly table = computed(() => figuresTable(this.fine(), this.reading()));
+
+  /** Where a new group is made, in what is in sight of the drawing. */
+  protected readonly apart = computed(() => ({
+    x: (this.carried()?.hidden ?? 0) + 1,
+    y: this.axisY() + 8,
+    width: sizes.left - 12,
+    height: 26,
+  }));
+
+  constructor() {
+    inject(DestroyRef).onDestroy(() => this.scroll.stop());
+  }
 
   protected cutLabel({ cut }: DrawnCut): string {
     return `Cut ${cut + 1} of ${this.geometry().cuts.length}`;
@@ -256,7 +281,7 @@ export class BinsFigure {
   /** Ends a drag where it began. */
   protected letGo(): void {
     this.dragged.set(null);
-    this.carried.set(null);
+    this.letGoOfCategories();
     this.previewed.emit(null);
   }
 
@@ -308,25 +333,46 @@ export class BinsFigure {
     if (!this.editable() || event.button !== 0) return;
     (event.currentTarget as Element).setPointerCapture(event.pointerId);
     const categories = this.chosen().has(name) ? [...this.chosen()] : [name];
-    this.carried.set({ pointer: event.pointerId, categories, fromX: event.clientX, moved: false, over: null });
+    const { clientX, clientY } = event;
+    this.carried.set({
+      pointer: event.pointerId,
+      categories,
+      fromX: clientX,
+      at: { clientX, clientY },
+      moved: false,
+      hidden: 0,
+      over: null,
+    });
   }
 
   protected carry(event: PointerEvent): void {
     const carried = this.carried();
     if (!carried || carried.pointer !== event.pointerId) return;
-    const moved = carried.moved || Math.abs(event.clientX - carried.fromX) >= dragFrom;
-    this.carried.set({ ...carried, moved, over: moved ? this.overAt(this.atX(event)) : null });
+    if (!carried.moved && Math.abs(event.clientX - carried.fromX) < dragFrom) return;
+    this.carryTo(carried, { clientX: event.clientX, clientY: event.clientY });
+    const frame = this.frame();
+    if (frame) this.scroll.follow(frame, event.clientX);
+  }
+
+  private carryTo(carried: DraggedCategory, at: Pointer): void {
+    this.carried.set({ ...carried, at, moved: true, hidden: this.hidden(), over: this.overAt(at) });
+  }
+
+  private letGoOfCategories(): void {
+    this.scroll.stop();
+    this.carried.set(null);
   }
 
   protected put(event: PointerEvent, name: string): void {
     const carried = this.carried();
     if (!carried || carried.pointer !== event.pointerId) return;
-    this.carried.set(null);
+    // Where it is let go is asked of what is in sight now: the figure may have scrolled since the pointer moved.
+    const over = this.overAt(event);
+    this.letGoOfCategories();
     if (!carried.moved) {
       this.choose(name);
       return;
     }
-    const over = this.overAt(this.atX(event));
     if (over !== null) this.regroup(carried.categories, over);
   }
 
@@ -358,15 +404,33 @@ export class BinsFigure {
     return edgeLetGo(this.geometry().edges, bins, cut, this.inDrawing(event.clientX - fromX), event.altKey);
   }
 
-  private overAt(x: number): number | 'new' | null {
+  /** The group under the pointer, or the place for a new one; null over anything else, and over what is out of sight. */
+  private overAt({ clientX, clientY }: Pointer): number | 'new' | null {
+    const frame = this.frame();
+    const bounds = frame?.getBoundingClientRect();
+    if (frame && bounds && (clientX > bounds.right || (clientX < bounds.left && frame.scrollLeft > 0))) return null;
+    const drawing = this.svg()?.nativeElement.getBoundingClientRect();
+    const [x, y] = [this.inDrawing(clientX - (drawing?.left ?? 0)), this.inDrawing(clientY - (drawing?.top ?? 0))];
+    const { y: top, width, height } = this.apart();
+    const left = this.hidden();
+    // It lies over the categories where the figure is scrolled; above and below it their groups can be reached.
+    if (x >= left && x <= left + width + 2 && y >= top - 4 && y <= top + height + 4) return 'new';
     const column = this.geometry().columns.find(({ x0, x1 }) => x >= x0 && x < x1);
     if (!column) return 'new';
     return column.bin !== null && this.reading().bins[column.bin].kind === 'group' ? column.bin : null;
   }
 
-  /** Horizontal place of the pointer in the drawing's own pixels. */
-  private atX(event: PointerEvent): number {
-    return this.inDrawing(event.clientX - (this.svg()?.nativeElement.getBoundingClientRect().left ?? 0));
+  /** What a figure scrolls in that is wider than the page; null where all of it is in sight. */
+  private frame(): HTMLElement | null {
+    const svg = this.svg()?.nativeElement;
+    return svg ? frameOf(svg) : null;
+  }
+
+  /** Pixels of the drawing that are out of sight at the left. */
+  private hidden(): number {
+    const [frame, svg] = [this.frame(), this.svg()?.nativeElement];
+    if (!frame || !svg) return 0;
+    return Math.max(0, this.inDrawing(frame.getBoundingClientRect().left - svg.getBoundingClientRect().left));
   }
 
   /** A length on the screen in the drawing's own pixels. */
