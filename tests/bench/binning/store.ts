@@ -12,7 +12,11 @@ export interface StoredSample {
 }
 
 /** Different values of the columns, in turn: shares in thousandths, years, amounts of nearly every value, kinds. */
-const forms = [1000, 70, 60_000, 12] as const;
+export const forms = [1000, 70, 60_000, 12] as const;
+
+/** The value at a place among so many different ones. */
+export const valueOf = (different: number, place: number): string =>
+  different === 1000 ? String(place / 1000) : different === 12 ? `kind ${place}` : String(place);
 
 /**
  * An invented sample written straight into the column store of a fresh database: three in four columns are numbers, of 70 to 60,000 different values, the
@@ -55,15 +59,13 @@ export async function storeSample(sequelize: Sequelize, ownerUrl: string, rows: 
   }
   for (const [position] of columns.entries()) {
     const different = forms[position % forms.length];
-    const text = (place: number): string =>
-      different === 1000 ? String(place / 1000) : different === 12 ? `kind ${place}` : String(place);
     for (let from = 0, segment = 0; from < rows; from += segmentRows, segment++) {
       const size = Math.min(segmentRows, rows - from);
       const places = new Map<string, number>();
       const codes = new Uint32Array(size);
       for (let i = 0; i < size; i++) {
         const mixed = random.uniform() < 0.4 ? risk[from + i] : random.uniform();
-        const value = random.uniform() < 0.03 ? '' : text(Math.floor(mixed * different));
+        const value = random.uniform() < 0.03 ? '' : valueOf(different, Math.floor(mixed * different));
         let place = places.get(value);
         if (place === undefined) places.set(value, (place = places.size));
         codes[i] = place;

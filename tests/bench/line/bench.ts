@@ -20,6 +20,7 @@ import { ensureBuilt } from '../../../tools/build.mjs';
 import { startPostgres, stopPostgres } from '../../../tools/postgres.mjs';
 import { Visitor } from '../../support/intake';
 import { act, choose, freeze, key, scale, writeTexts } from '../../support/line';
+import { timeReclassing } from '../../support/reclassing';
 import { peakMemoryMiB } from '../../support/server-process';
 import { endService, prepareProduct, startService, uploadFile } from '../product';
 import { writeLineFile } from './file';
@@ -176,7 +177,12 @@ async function line(
     modeller.get(`/api/binnings/${binningId}/characteristics/${characteristicId}`).expect(200),
   );
 
-  await timedReclassing(modeller, binningId, characteristics.body.characteristics as CharacteristicSummary[]);
+  const waits = await timeReclassing(modeller, binningId, characteristics.body.characteristics as CharacteristicSummary[]);
+  for (const name of ['p50', 'p95'] as const) {
+    const step = `class one anew, ${name}`;
+    steps[step] = waits[name] / 1000;
+    say(`${step.padEnd(28)} ${steps[step].toFixed(3)} s`);
+  }
 
   const fitId = await timed('fit, ten folds', async () => {
     const { body } = await modeller
@@ -212,26 +218,4 @@ async function line(
       .expect(202);
     await ended(validator, body.runId as string);
   });
-}
-
-/** One characteristic after the other is classed anew through the API, as the bench of a characteristic asks for it: the median and p95 of 60. */
-async function timedReclassing(modeller: Visitor, binningId: string, listed: readonly CharacteristicSummary[]): Promise<void> {
-  const milliseconds: number[] = [];
-  const revisions = new Map(listed.map(({ id, revision }) => [id, revision]));
-  for (let turn = 0; turn < 60; turn++) {
-    const { id } = listed[turn % listed.length];
-    const revision = revisions.get(id);
-    const began = performance.now();
-    const { body } = await modeller
-      .post(`/api/binnings/${binningId}/reclassings`)
-      .send({ characteristics: [{ id, revision }], constraints: { mostBins: 5 + (turn % 2) }, reason: 'Measured' })
-      .expect(200);
-    milliseconds.push(performance.now() - began);
-    for (const one of (body as { characteristics: CharacteristicSummary[] }).characteristics) revisions.set(one.id, one.revision);
-  }
-  milliseconds.sort((a, b) => a - b);
-  for (const [name, place] of [['p50', 29], ['p95', 56]] as const) {
-    steps[`class one anew, ${name}`] = milliseconds[place] / 1000;
-    say(`${`class one anew, ${name}`.padEnd(28)} ${(milliseconds[place] / 1000).toFixed(3)} s`);
-  }
 }
