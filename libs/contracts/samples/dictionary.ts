@@ -15,6 +15,8 @@ export type DictionaryEntry = z.infer<typeof DictionaryEntry>;
 export const DictionaryContent = z.strictObject({ entries: z.array(DictionaryEntry).max(200) });
 export type DictionaryContent = z.infer<typeof DictionaryContent>;
 
+const Lost = z.array(z.object({ what: z.string(), why: z.string() }));
+
 /** What was taken over from an earlier sample of the model when this one was read. */
 export const CarriedDictionary = z.object({
   sampleId: z.uuid(),
@@ -24,6 +26,11 @@ export const CarriedDictionary = z.object({
   notCarried: z.array(z.object({ column: z.string(), why: z.string() })),
   /** The file of a later sample that nobody has defined yet, where labels, units and descriptions are from that one. */
   wordsFrom: z.string().nullable(),
+  /**
+   * What the definition of that sample says of the values of the outcome, the decision and the partition, and of codes: what was taken over, and
+   * what could not be. Left out without a definition, and where a sample was read before this was carried over.
+   */
+  definition: z.object({ carried: z.array(z.enum(['outcome', 'declined', 'partition'])), lost: Lost }).optional(),
 });
 export type CarriedDictionary = z.infer<typeof CarriedDictionary>;
 
@@ -32,7 +39,7 @@ export const KeptDraft = z.object({
   /** Columns that stayed as they were. */
   columns: z.array(z.string()),
   /** What could not stay, a column or a rule, with the reason. */
-  lost: z.array(z.object({ what: z.string(), why: z.string() })),
+  lost: Lost,
 });
 export type KeptDraft = z.infer<typeof KeptDraft>;
 

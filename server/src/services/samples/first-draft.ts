@@ -7,6 +7,7 @@ import { rows } from '../../database/sql';
 import { proposeOutcome } from '../../profiling/guess-outcome';
 import { carryDictionary, noteReadAgain } from './dictionary/carry';
 import { keepDraft } from './keep-draft';
+import { drawnBySeed } from './keep-values';
 
 /** The draft that a person finds after reading: every suggestion filled in, nothing confirmed. */
 export function firstDraft(profiles: readonly ColumnProfile[]): DraftContent {
@@ -44,7 +45,7 @@ export function firstDraft(profiles: readonly ColumnProfile[]): DraftContent {
     outcome: outcome ? proposeOutcome(outcome) : { good: [], bad: [], indeterminate: [], excluded: [] },
     declined: declined.length > 0 ? { values: declined } : null,
     exclusions: [],
-    partition: partition ? byColumn(partition) : { by: 'seed', seed: 1, holdOutShare: 0.3, outOfTime: null },
+    partition: partition ? byColumn(partition) : drawnBySeed,
   };
 }
 

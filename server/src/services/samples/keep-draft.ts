@@ -1,8 +1,10 @@
 import { type ColumnProfile, type ColumnRole, singleRoles } from '@tallystone/contracts/samples/columns';
-import type { DefinedColumn, DraftContent, DraftOutcome, ExclusionRule } from '@tallystone/contracts/samples/definition';
+import type { DefinedColumn, DraftContent, ExclusionRule } from '@tallystone/contracts/samples/definition';
 import type { KeptDraft } from '@tallystone/contracts/samples/dictionary';
+import { withColumns } from '@tallystone/contracts/samples/role-holders';
+import { type Lost, keepDeclined, keepOutcome, keepParts, withPartition } from './keep-values';
 
-type Lost = KeptDraft['lost'];
+const words = { gone: 'is not there any more', here: 'under these choices' };
 const limits = ['below', 'atMost', 'above', 'atLeast'] as const;
 
 /**
@@ -28,23 +30,24 @@ export function keepDraft(
     return name !== undefined && name === holder(role, before.columns) ? here.get(name) : undefined;
   };
 
+  // What is suggested of values is suggested for the columns that have the roles there.
+  const fresh = withPartition(withColumns(suggested, columns.list));
   const ofOutcome = same('outcome');
-  const outcome = ofOutcome ? keepOutcome(before.outcome, ofOutcome, here, lost) : suggested.outcome;
+  const outcome = ofOutcome ? keepOutcome(before.outcome, ofOutcome, here, words, lost) : fresh.outcome;
   if (!ofOutcome && holder('outcome', before.columns) !== undefined)
     lost.push({ what: 'Outcome', why: 'Its column is another one now.' });
 
   const ofDecision = same('decision');
-  const named = before.declined?.values ?? [];
-  const still = ofDecision ? named.filter(isThere(ofDecision)) : [];
-  if (still.length < named.length) lost.push({ what: 'Declined', why: 'Values that stood for it are not there any more.' });
+  const declined = ofDecision ? keepDeclined(before.declined, ofDecision, words, lost) : fresh.declined;
+  if (!ofDecision && before.declined !== null) lost.push({ what: 'Declined', why: 'Its column is another one now.' });
 
   return {
     content: {
       columns: columns.list,
       outcome,
-      declined: ofDecision ? (still.length > 0 ? { values: still } : null) : suggested.declined,
+      declined,
       exclusions: before.exclusions.filter((rule) => fits(rule, here, lost)),
-      partition: keepPartition(before, suggested, columns.list, same('partition'), here, lost),
+      partition: keepPartition(before, fresh, same('partition'), here, lost),
     },
     kept: { columns: columns.kept, lost },
   };
@@ -105,42 +108,6 @@ function asNow(old: DefinedColumn, fresh: DefinedColumn, profile: ColumnProfile,
   return { ...kept, kind: profile.kind, special };
 }
 
-/** Whether a value still stands in the file; where the profile does not list all of them nobody can tell, and it is kept. */
-const isThere =
-  ({ valuesComplete, mostFrequent, missingTokens }: ColumnProfile) =>
-  (value: string): boolean =>
-    !valuesComplete || [...mostFrequent, ...missingTokens].some((entry) => entry.value === value);
-
-function keepOutcome(
-  { rule, ...values }: DraftOutcome,
-  profile: ColumnProfile,
-  here: ReadonlyMap<string, ColumnProfile>,
-  lost: Lost,
-): DraftOutcome {
-  const there = isThere(profile);
-  const kept = {
-    good: values.good.filter(there),
-    bad: values.bad.filter(there),
-    indeterminate: values.indeterminate.filter(there),
-    excluded: values.excluded.filter(there),
-  };
-  const gone = Object.values(values)
-    .flat()
-    .filter((value) => !there(value));
-  // Under a rule the lists do not count.
-  if (!rule && gone.length > 0)
-    lost.push({ what: 'Outcome', why: `${gone.map((value) => JSON.stringify(value)).join(', ')} is not there any more.` });
-  if (!rule) return kept;
-  if (profile.kind !== 'numeric') {
-    lost.push({ what: 'Outcome by rule', why: `${profile.column} holds no numbers under these choices.` });
-    return kept;
-  }
-  const { monthsOnBook } = rule;
-  if (monthsOnBook === null || here.get(monthsOnBook.column)?.kind === 'numeric') return { ...kept, rule };
-  lost.push({ what: 'Months on book', why: `${monthsOnBook.column} holds no numbers under these choices.` });
-  return { ...kept, rule: { ...rule, monthsOnBook: null } };
-}
-
 /** An exclusion is kept as a whole or not at all: without one of its tests it would take out other rows. */
 function fits(rule: ExclusionRule, here: ReadonlyMap<string, ColumnProfile>, lost: Lost): boolean {
   const what = rule.reason.trim() === '' ? 'An exclusion' : `Exclusion “${rule.reason.trim()}”`;
@@ -161,25 +128,17 @@ function fits(rule: ExclusionRule, here: ReadonlyMap<string, ColumnProfile>, los
 
 function keepPartition(
   { partition }: DraftContent,
-  suggested: DraftContent,
-  columns: readonly DefinedColumn[],
+  fresh: DraftContent,
   profile: ColumnProfile | undefined,
   here: ReadonlyMap<string, ColumnProfile>,
   lost: Lost,
 ): DraftContent['partition'] {
   if (partition.by === 'column') {
-    if (profile) {
-      const there = isThere(profile);
-      const { development, holdOut, outOfTime } = partition;
-      const kept = { development: development.filter(there), holdOut: holdOut.filter(there), outOfTime: outOfTime.filter(there) };
-      if (Object.values(kept).flat().length < [...development, ...holdOut, ...outOfTime].length)
-        lost.push({ what: 'Partition', why: 'Values that stood for a part are not there any more.' });
-      return { by: 'column', ...kept };
-    }
+    if (profile) return keepParts(partition, profile, words, lost);
     lost.push({ what: 'Partition', why: 'Its column is another one now.' });
-    return suggested.partition;
+    return fresh.partition;
   }
-  const date = columns.find(({ role }) => role === 'application date');
+  const date = fresh.columns.find(({ role }) => role === 'application date');
   if (partition.outOfTime === null || (date && here.get(date.column)?.kind === 'date')) return partition;
   lost.push({ what: 'Out-of-time', why: 'No column of application dates holds dates under these choices.' });
   return { ...partition, outOfTime: null };

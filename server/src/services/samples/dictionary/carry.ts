@@ -1,15 +1,24 @@
-import { type ColumnProfile, singleRoles } from '@tallystone/contracts/samples/columns';
+import { type ColumnProfile, type ColumnRole, singleRoles } from '@tallystone/contracts/samples/columns';
 import type { DefinedColumn, DraftContent, SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
 import type { CarriedDictionary, DictionaryEntry, KeptDraft } from '@tallystone/contracts/samples/dictionary';
+import { withColumns } from '@tallystone/contracts/samples/role-holders';
+import { isByRule, outcomeColumns } from '@tallystone/contracts/specification/outcome';
+import type { OutcomeDefinition } from '@tallystone/contracts/specification/types';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../../database/sql';
+import { type Lost, keepDeclined, keepOutcome, keepParts, withPartition } from '../keep-values';
 
 interface Earlier {
   readonly sampleId: string;
   readonly fileName: string;
   readonly columns: SampleDefinitionContent['columns'];
+  /** Null where nobody has defined that sample yet. */
+  readonly meanings: Meanings | null;
   readonly entries: DictionaryEntry[] | null;
 }
+
+/** What a definition says of values. */
+type Meanings = Pick<SampleDefinitionContent, 'outcome' | 'declined' | 'partition'>;
 
 /** A sample in which words were written, later than the latest with a definition: its roles are a draft, its words are not. */
 interface Worded extends Earlier {
@@ -18,8 +27,8 @@ interface Worded extends Earlier {
 
 /**
  * Takes over what the latest earlier sample of the model with a confirmed definition says of columns that have the same name and kind here:
- * role, protection and special codes into the draft, label, unit, description and treatments into the dictionary. Where a later sample has a
- * dictionary and no definition yet, the words are from that one. What is not taken over is kept with its reason, to be shown.
+ * role, protection and special codes into the draft, label, unit, description and treatments into the dictionary. What values of the outcome, the
+ * decision and the partition mean goes with their columns. Where a later sample has a dictionary and no definition yet, the words are from that one. What is not taken over is kept with its reason, to be shown.
  *
  * @returns the draft as it is to be stored
  */
@@ -32,7 +41,8 @@ export async function carryDictionary(
 ): Promise<DraftContent> {
   const [defined] = await rows<Worded>(
     sequelize,
-    `SELECT e.id AS "sampleId", e.number, e.file_name AS "fileName", d.content -> 'columns' AS columns, y.entries
+    `SELECT e.id AS "sampleId", e.number, e.file_name AS "fileName", d.content -> 'columns' AS columns,
+            d.content - 'columns' AS meanings, y.entries
        FROM samples s JOIN samples e ON e.model_id = s.model_id AND e.number < s.number
        JOIN LATERAL (SELECT content FROM sample_definitions WHERE sample_id = e.id ORDER BY number DESC LIMIT 1) d ON true
        LEFT JOIN sample_dictionaries y ON y.sample_id = e.id
@@ -42,7 +52,7 @@ export async function carryDictionary(
   );
   const [worded] = await rows<Worded>(
     sequelize,
-    `SELECT e.id AS "sampleId", e.number, e.file_name AS "fileName", f.content -> 'columns' AS columns, y.entries
+    `SELECT e.id AS "sampleId", e.number, e.file_name AS "fileName", f.content -> 'columns' AS columns, NULL AS meanings, y.entries
        FROM samples s JOIN samples e ON e.model_id = s.model_id AND e.number < s.number
        JOIN sample_drafts f ON f.sample_id = e.id
        JOIN sample_dictionaries y ON y.sample_id = e.id AND y.saved_at IS NOT NULL
@@ -109,11 +119,69 @@ export function takeOver(
       return { ...column, role: known.role, protected: known.protected || column.protected, citation: known.citation, special: known.special, reason: known.reason, ...(known.amounts && { amounts: known.amounts }) };
     return taken.has(column.role) ? { ...column, role: 'not used', reason: 'Another column has this role in the earlier sample.' } : column;
   }); // prettier-ignore
+  const content = withPartition(withColumns(draft, columns));
+  const decision = earlier.columns.find(({ role }) => role === 'decision')?.column ?? null;
+  const definition = earlier.meanings && carryMeanings(earlier.meanings, decision, content, here);
   return {
-    content: { ...draft, columns },
+    content: { ...content, ...definition?.content },
     entries: (earlier.entries ?? []).filter(({ column }) => kept.has(column)),
-    carried: { sampleId: earlier.sampleId, fileName: earlier.fileName, columns: [...kept.keys()], notCarried, wordsFrom: null },
+    carried: {
+      sampleId: earlier.sampleId,
+      fileName: earlier.fileName,
+      columns: [...kept.keys()],
+      notCarried,
+      wordsFrom: null,
+      ...(definition && { definition: definition.told }),
+    },
   };
+}
+
+/**
+ * What values mean here by the earlier definition: good and bad, who was declined, which part. It was confirmed for the column that it names, and
+ * holds for that one alone.
+ */
+function carryMeanings(
+  { outcome, declined, partition }: Meanings,
+  decision: string | null,
+  draft: DraftContent,
+  here: ReadonlyMap<string, ColumnProfile>,
+): { content: Partial<DraftContent>; told: NonNullable<CarriedDictionary['definition']> } {
+  const words = { gone: 'is not in this file', here: 'here' };
+  const content: { -readonly [Key in keyof DraftContent]?: DraftContent[Key] } = {};
+  const carried: NonNullable<CarriedDictionary['definition']>['carried'] = [];
+  const lost: Lost = [];
+  /** The profile of this column where it has this role here too; otherwise that it has not is said. */
+  const holder = (role: ColumnRole, column: string, what: string): ColumnProfile | undefined => {
+    if (draft.columns.find((one) => one.role === role)?.column === column) return here.get(column);
+    lost.push({ what, why: `It was said of ${column}, which is not the ${role} here.` });
+    return undefined;
+  };
+  const ofOutcome = holder('outcome', outcomeColumns(outcome)[0], 'Outcome');
+  if (ofOutcome) {
+    content.outcome = keepOutcome(draftOutcome(outcome), ofOutcome, here, words, lost);
+    carried.push('outcome');
+  }
+  // That nobody was declined was confirmed, too.
+  const ofDecision = decision !== null && holder('decision', decision, 'Declined');
+  if (ofDecision) {
+    content.declined = keepDeclined(declined, ofDecision, words, lost);
+    carried.push('declined');
+  }
+  const ofPartition = 'column' in partition && holder('partition', partition.column, 'Partition');
+  if (ofPartition) {
+    content.partition = keepParts(partition, ofPartition, words, lost);
+    carried.push('partition');
+  }
+  return { content, told: { carried, lost } };
+}
+
+function draftOutcome(outcome: OutcomeDefinition): DraftContent['outcome'] {
+  if (!isByRule(outcome)) {
+    const { good, bad, indeterminate, excluded } = outcome;
+    return { good, bad, indeterminate, excluded };
+  }
+  const { bad, indeterminate, missing } = outcome.daysPastDue;
+  return { good: [], bad: [], indeterminate: [], excluded: [], rule: { bad, indeterminate, missing, monthsOnBook: outcome.monthsOnBook } };
 }
 
 function obstacle(column: DefinedColumn, profile: ColumnProfile | undefined): string | null {

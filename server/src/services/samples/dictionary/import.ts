@@ -1,3 +1,4 @@
+import { withColumns } from '@tallystone/contracts/samples/role-holders';
 import type { Transaction } from 'sequelize';
 import type { Context } from '../../../context';
 import type { Actor } from '../../../models/person';
@@ -29,6 +30,6 @@ export async function importDictionary(
   const { read, problems } = readDictionaryCsv(text, columns, dictionary.entries);
   if (!read) throw invalid(problems);
   if (draft && JSON.stringify(read.columns) !== JSON.stringify(columns))
-    await saveDraft(context, tx, person, draft, { ...draft.content, columns: read.columns });
+    await saveDraft(context, tx, person, draft, withColumns(draft.content, read.columns));
   return writeDictionary(context.sequelize, tx, person, dictionary, read.entries, 'file');
 }

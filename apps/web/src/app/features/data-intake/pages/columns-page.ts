@@ -33,6 +33,7 @@ import { SaveStateNote } from '../ui/save-state';
 import { TakenOverNote, carriedOver, keptOver } from '../ui/taken-over';
 import type { DefinedColumn } from '@tallystone/contracts/samples/definition';
 import { labelWords } from '@tallystone/contracts/samples/labels';
+import { withColumns } from '@tallystone/contracts/samples/role-holders';
 
 interface Row {
   readonly profile: ColumnProfile;
@@ -347,10 +348,12 @@ export class ColumnsPage {
   }
 
   protected change(entry: DefinedColumn): void {
-    this.draft.change((content) => ({
-      ...content,
-      columns: content.columns.map((column) => (column.column === entry.column ? entry : column)),
-    }));
+    this.draft.change((content) =>
+      withColumns(
+        content,
+        content.columns.map((column) => (column.column === entry.column ? entry : column)),
+      ),
+    );
   }
 }
 

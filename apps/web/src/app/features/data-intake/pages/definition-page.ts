@@ -6,6 +6,7 @@ import type { ProtectedColumn } from '@tallystone/contracts/permissions/schema';
 import { comparedWords } from '@tallystone/contracts/samples/balance-reading';
 import type { ColumnRole } from '@tallystone/contracts/samples/columns';
 import type { DraftContent } from '@tallystone/contracts/samples/definition';
+import { withColumns } from '@tallystone/contracts/samples/role-holders';
 import { filter } from 'rxjs';
 import { CurrentModel } from '../../../core/current-model';
 import { type Run, Runs, hasEnded } from '../../../core/events/runs';
@@ -186,14 +187,18 @@ export class DefinitionPage {
 
   /** The outcome moves to another column; the one that had it is not used until someone gives it a role. */
   protected setOutcomeColumn(column: string): void {
-    this.draft.change((content) => ({
-      ...content,
-      columns: content.columns.map((entry) => {
-        if (entry.column === column) return { ...entry, role: 'outcome' };
-        return entry.role === 'outcome' ? { ...entry, role: 'not used', reason: 'Another column is the outcome.' } : entry;
-      }),
-      outcome: { good: [], bad: [], indeterminate: [], excluded: [], ...(content.outcome.rule && { rule: content.outcome.rule }) },
-    }));
+    this.draft.change((content) => {
+      const moved = withColumns(
+        content,
+        content.columns.map((entry) => {
+          if (entry.column === column) return { ...entry, role: 'outcome' };
+          return entry.role === 'outcome' ? { ...entry, role: 'not used', reason: 'Another column is the outcome.' } : entry;
+        }),
+      );
+      // The column is chosen under its rule, which stays in sight.
+      const { rule } = content.outcome;
+      return rule ? { ...moved, outcome: { ...moved.outcome, rule } } : moved;
+    });
   }
 
   /** Months on book are known only after the decision: as part of the outcome the column is no characteristic any more. */

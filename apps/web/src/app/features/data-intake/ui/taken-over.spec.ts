@@ -53,6 +53,14 @@ describe('what was taken over', () => {
     ]);
   });
 
+  it('says what values mean here by the earlier definition, and at once what could not be taken from it', async () => {
+    const definition = { carried: ['outcome' as const, 'declined' as const], lost: [{ what: 'Outcome', why: '"open" is not in this file.' }] };
+    const note = await show(carriedOver({ ...carried, definition }));
+    expect(words(note.querySelector('p'))).toMatch(/same name and kind\. So is what their values mean: the outcome, who was declined\.$/);
+    expect([...note.querySelectorAll(':scope > ul li')].map(words)).toEqual(['Outcome "open" is not in this file.']);
+    expect(carriedOver({ ...carried, definition: { carried: [], lost: [] } }).words).not.toContain('their values mean');
+  });
+
   it('lists nothing where nothing is lost', async () => {
     const kept = await show(keptOver({ columns: ['age'], lost: [] }));
     expect(words(kept)).toBe('The file was read again: the draft stayed as it was.');

@@ -6,13 +6,20 @@ import { plural } from '../../../ui/numbers';
 /** What was taken over from before, in a sentence, and what could not be. */
 export interface TakenOver {
   readonly words: string;
-  readonly lost: readonly { readonly what: string; readonly why: string }[];
-  /** Stands for the list until it is opened; null where the list is shown at once. */
-  readonly folded: string | null;
+  /** What was written by somebody and is lost: it is shown at once. */
+  readonly lost: readonly Lost[];
+  /** What is merely not here, behind a sentence that stands for it until it is opened. */
+  readonly folded: { readonly summary: string; readonly list: readonly Lost[] } | null;
+}
+interface Lost {
+  readonly what: string;
+  readonly why: string;
 }
 
+const spoken = { outcome: 'the outcome', declined: 'who was declined', partition: 'the partition' } as const;
+
 /** From an earlier sample of the model: many columns of it may not be here, which is nothing to worry about. */
-export function carriedOver({ columns, fileName, wordsFrom, notCarried }: CarriedDictionary): TakenOver {
+export function carriedOver({ columns, fileName, wordsFrom, notCarried, definition }: CarriedDictionary): TakenOver {
   const many = plural(columns.length, 'column');
   const words =
     wordsFrom === null
@@ -20,10 +27,18 @@ export function carriedOver({ columns, fileName, wordsFrom, notCarried }: Carrie
       : wordsFrom === fileName
         ? `Words of ${many} are carried over from ${fileName}, which has no definition yet`
         : `Roles and special codes of ${many} are carried over from ${fileName}, words from ${wordsFrom}`;
+  const meanings = definition?.carried ?? [];
+  const also = meanings.length === 0 ? '' : ` So is what their values mean: ${meanings.map((what) => spoken[what]).join(', ')}.`;
   return {
-    words: `${words}: same name and kind.`,
-    lost: notCarried.map(({ column, why }) => ({ what: column, why })),
-    folded: `${plural(notCarried.length, 'column')} not carried over`,
+    words: `${words}: same name and kind.${also}`,
+    lost: definition?.lost ?? [],
+    folded:
+      notCarried.length === 0
+        ? null
+        : {
+            summary: `${plural(notCarried.length, 'column')} not carried over`,
+            list: notCarried.map(({ column, why }) => ({ what: column, why })),
+          },
   };
 }
 
@@ -45,18 +60,17 @@ export function keptOver({ lost }: KeptDraft): TakenOver {
   template: `
     <p>{{ note().words }}</p>
     @if (note().lost.length > 0) {
-      @if (note().folded; as summary) {
-        <details>
-          <summary>{{ summary }}</summary>
-          <ng-container [ngTemplateOutlet]="list" />
-        </details>
-      } @else {
-        <ng-container [ngTemplateOutlet]="list" />
-      }
+      <ng-container [ngTemplateOutlet]="list" [ngTemplateOutletContext]="{ $implicit: note().lost }" />
     }
-    <ng-template #list>
+    @if (note().folded; as folded) {
+      <details>
+        <summary>{{ folded.summary }}</summary>
+        <ng-container [ngTemplateOutlet]="list" [ngTemplateOutletContext]="{ $implicit: folded.list }" />
+      </details>
+    }
+    <ng-template #list let-entries>
       <ul>
-        @for (entry of note().lost; track $index) {
+        @for (entry of entries; track $index) {
           <li>
             <b>{{ entry.what }}</b> {{ entry.why }}
           </li>
