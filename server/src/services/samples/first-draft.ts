@@ -7,6 +7,7 @@ import { rows } from '../../database/sql';
 import { proposeOutcome } from '../../profiling/guess-outcome';
 import { carryDictionary, noteReadAgain } from './dictionary/carry';
 import { keepDraft } from './keep-draft';
+import type { ReadKinds } from './keep-kind';
 import { drawnBySeed } from './keep-values';
 
 /** The draft that a person finds after reading: every suggestion filled in, nothing confirmed. */
@@ -60,12 +61,17 @@ function byColumn(profile: ColumnProfile): DraftContent['partition'] {
   };
 }
 
-/** Stores the draft that a reading leaves: what an earlier sample says carried over on the first one, what was decided here kept on any later one. */
+/**
+ * Stores the draft that a reading leaves: what an earlier sample says carried over on the first one, what was decided here kept on any later one.
+ *
+ * @param readBefore what the reading before took the columns for
+ */
 export async function writeFirstDraft(
   context: Context,
   tx: Transaction,
   sampleId: string,
   profiles: readonly ColumnProfile[],
+  readBefore: ReadKinds,
   personId: string,
 ): Promise<void> {
   const suggested = await carryDictionary(context.sequelize, tx, sampleId, firstDraft(profiles), profiles);
@@ -75,7 +81,7 @@ export async function writeFirstDraft(
     [sampleId],
     tx,
   );
-  const again = before ? keepDraft(before.content, suggested, profiles) : null;
+  const again = before ? keepDraft(before.content, suggested, profiles, readBefore) : null;
   if (again) await noteReadAgain(context.sequelize, tx, sampleId, again.kept);
   const content = again?.content ?? suggested;
   await rows(

@@ -1,7 +1,9 @@
 import { type ColumnProfile, type ColumnRole, singleRoles } from '@tallystone/contracts/samples/columns';
 import type { DefinedColumn, DraftContent, ExclusionRule } from '@tallystone/contracts/samples/definition';
 import type { KeptDraft } from '@tallystone/contracts/samples/dictionary';
+import type { ColumnKind } from '@tallystone/contracts/samples/reading';
 import { withColumns } from '@tallystone/contracts/samples/role-holders';
+import { type ReadKinds, codesOfNumbers, keptKind } from './keep-kind';
 import { type Lost, keepDeclined, keepOutcome, keepParts, withPartition } from './keep-values';
 
 const words = { gone: 'is not there any more', here: 'under these choices' };
@@ -13,15 +15,17 @@ const limits = ['below', 'atMost', 'above', 'atLeast'] as const;
  *
  * @param before the draft as it was under the reading before
  * @param suggested the draft that the new reading suggests
+ * @param readBefore what the reading before took the columns for
  */
 export function keepDraft(
   before: DraftContent,
   suggested: DraftContent,
   profiles: readonly ColumnProfile[],
+  readBefore: ReadKinds,
 ): { content: DraftContent; kept: KeptDraft } {
   const lost: Lost = [];
   const here = new Map(profiles.map((profile) => [profile.column, profile]));
-  const columns = keepColumns(before, suggested, here, lost);
+  const columns = keepColumns(before, suggested, here, readBefore, lost);
   const holder = (role: ColumnRole, list: readonly DefinedColumn[] = columns.list): string | undefined =>
     list.find((column) => column.role === role)?.column;
   /** The profile of the column that has this role now, where it is the one that had it before. */
@@ -57,6 +61,7 @@ function keepColumns(
   before: DraftContent,
   suggested: DraftContent,
   here: ReadonlyMap<string, ColumnProfile>,
+  readBefore: ReadKinds,
   lost: Lost,
 ): { list: DefinedColumn[]; kept: string[] } {
   const known = new Map(before.columns.map((column) => [column.column, column]));
@@ -67,8 +72,9 @@ function keepColumns(
     const old = known.get(fresh.column);
     const profile = here.get(fresh.column);
     if (!old || !profile) continue;
-    const why = obstacle(old, profile);
-    if (why === null) kept.set(fresh.column, asNow(old, fresh, profile, lost));
+    const readAs = readBefore[fresh.column];
+    const why = obstacle(old, readAs, profile);
+    if (why === null) kept.set(fresh.column, asNow(old, fresh, keptKind(old, readAs, profile) ?? profile.kind, lost));
     else lost.push({ what: fresh.column, why });
   }
   // A role that only one column can have stays with the column that was given it.
@@ -81,31 +87,23 @@ function keepColumns(
   return { list, kept: [...kept.keys()] };
 }
 
-function obstacle(old: DefinedColumn, profile: ColumnProfile): string | null {
+function obstacle(old: DefinedColumn, readAs: ColumnKind | undefined, profile: ColumnProfile): string | null {
   if (profile.hashed && !['identifier', 'group key', 'not used'].includes(old.role))
     return 'It identifies people under these choices, and is kept as keyed hashes.';
   const stop = profile.flags.find(({ weight }) => weight === 'stop');
   if (stop && old.role !== 'not used' && old.role !== 'identifier')
     return `It cannot be used under these choices: ${stop.finding}`;
-  if (old.kind === profile.kind || (old.kind === 'categorical' && profile.kind === 'numeric' && old.role !== 'not used'))
-    return null;
-  return `It is ${profile.kind} under these choices, and was ${old.kind}.`;
+  return keptKind(old, readAs, profile) === null ? `It is ${profile.kind} under these choices, and was ${old.kind}.` : null;
 }
 
 /** Texts that became numbers take their special codes with them where these are numbers too. */
-function asNow(old: DefinedColumn, fresh: DefinedColumn, profile: ColumnProfile, lost: Lost): DefinedColumn {
+function asNow(old: DefinedColumn, fresh: DefinedColumn, kind: ColumnKind, lost: Lost): DefinedColumn {
   const kept = { ...old, protected: old.protected || fresh.protected };
-  if (old.kind === profile.kind) return kept;
-  const asNumber = (value: string | number): number[] => {
-    const number = typeof value === 'number' ? value : /^[+-]?\d+(\.\d+)?$/.test(value.trim()) ? Number(value) : NaN;
-    return Number.isNaN(number) ? [] : [number];
-  };
-  const special = old.special
-    .map(({ label, values }) => ({ label, values: values.flatMap(asNumber) }))
-    .filter(({ values }) => values.length > 0);
-  if (special.flatMap(({ values }) => values).length < old.special.flatMap(({ values }) => values).length)
+  if (old.kind === kind) return kept;
+  const { special, someLost } = codesOfNumbers(old.special);
+  if (someLost)
     lost.push({ what: old.column, why: 'It is numeric under these choices: special codes that are no numbers were left out.' });
-  return { ...kept, kind: profile.kind, special };
+  return { ...kept, kind, special };
 }
 
 /** An exclusion is kept as a whole or not at all: without one of its tests it would take out other rows. */

@@ -12,6 +12,7 @@ import { NotPlain } from '../../reading/plain/field-index';
 import { actorOf } from '../people/actor-of';
 import { appendRecord } from '../record/append';
 import { writeFirstDraft } from './first-draft';
+import { readKindsOf } from './keep-kind';
 import { problemItem } from './problem-item';
 import { profileReading } from './profile-reading';
 import { readCarefully } from './read-carefully';
@@ -63,6 +64,8 @@ export async function readFile(sampleId: string, choices: ReadingChoices, run: R
   run.progress('storing', 0.98);
   await run.finish(async (tx) => {
     await storeProfiles(context, tx, readingId, profiles);
+    // The reading before goes, and with it what it took the columns for.
+    const readBefore = await readKindsOf(context.sequelize, tx, sampleId);
     await Sample.update(
       {
         reading: choices,
@@ -76,7 +79,7 @@ export async function readFile(sampleId: string, choices: ReadingChoices, run: R
       { where: { id: sampleId }, transaction: tx },
     );
     await dropReadings(context, tx, sampleId, readingId);
-    await writeFirstDraft(context, tx, sampleId, profiles, run.run.personId);
+    await writeFirstDraft(context, tx, sampleId, profiles, readBefore, run.run.personId);
     await appendRecord(tx, {
       actor: await actorOf(run.run.personId, tx),
       action: 'sample.read',

@@ -1,11 +1,13 @@
 import { type ColumnProfile, type ColumnRole, singleRoles } from '@tallystone/contracts/samples/columns';
 import type { DefinedColumn, DraftContent, SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
 import type { CarriedDictionary, DictionaryEntry, KeptDraft } from '@tallystone/contracts/samples/dictionary';
+import type { ColumnKind } from '@tallystone/contracts/samples/reading';
 import { withColumns } from '@tallystone/contracts/samples/role-holders';
 import { isByRule, outcomeColumns } from '@tallystone/contracts/specification/outcome';
 import type { OutcomeDefinition } from '@tallystone/contracts/specification/types';
 import type { Sequelize, Transaction } from 'sequelize';
 import { rows } from '../../../database/sql';
+import { type ReadKinds, codesOfNumbers, keptKind } from '../keep-kind';
 import { type Lost, keepDeclined, keepOutcome, keepParts, withPartition } from '../keep-values';
 
 interface Earlier {
@@ -14,8 +16,12 @@ interface Earlier {
   readonly columns: SampleDefinitionContent['columns'];
   /** Null where nobody has defined that sample yet. */
   readonly meanings: Meanings | null;
+  /** What reading took its columns for. */
+  readonly kinds: ReadKinds | null;
   readonly entries: DictionaryEntry[] | null;
 }
+
+const readKinds = '(SELECT jsonb_object_agg(c.name, c.kind) FROM sample_columns c WHERE c.reading_id = e.reading_id) AS kinds';
 
 /** What a definition says of values. */
 type Meanings = Pick<SampleDefinitionContent, 'outcome' | 'declined' | 'partition'>;
@@ -42,7 +48,7 @@ export async function carryDictionary(
   const [defined] = await rows<Worded>(
     sequelize,
     `SELECT e.id AS "sampleId", e.number, e.file_name AS "fileName", d.content -> 'columns' AS columns,
-            d.content - 'columns' AS meanings, y.entries
+            d.content - 'columns' AS meanings, ${readKinds}, y.entries
        FROM samples s JOIN samples e ON e.model_id = s.model_id AND e.number < s.number
        JOIN LATERAL (SELECT content FROM sample_definitions WHERE sample_id = e.id ORDER BY number DESC LIMIT 1) d ON true
        LEFT JOIN sample_dictionaries y ON y.sample_id = e.id
@@ -52,7 +58,8 @@ export async function carryDictionary(
   );
   const [worded] = await rows<Worded>(
     sequelize,
-    `SELECT e.id AS "sampleId", e.number, e.file_name AS "fileName", f.content -> 'columns' AS columns, NULL AS meanings, y.entries
+    `SELECT e.id AS "sampleId", e.number, e.file_name AS "fileName", f.content -> 'columns' AS columns, NULL AS meanings,
+            ${readKinds}, y.entries
        FROM samples s JOIN samples e ON e.model_id = s.model_id AND e.number < s.number
        JOIN sample_drafts f ON f.sample_id = e.id
        JOIN sample_dictionaries y ON y.sample_id = e.id AND y.saved_at IS NOT NULL
@@ -103,10 +110,13 @@ export function takeOver(
   const here = new Map(profiles.map((profile) => [profile.column, profile]));
   const notCarried: CarriedDictionary['notCarried'] = [];
   const kept = new Map<string, DefinedColumn>();
+  const lost: Lost = [];
   for (const column of earlier.columns) {
-    const why = obstacle(column, here.get(column.column));
-    if (why === null) kept.set(column.column, column);
-    else notCarried.push({ column: column.column, why });
+    const profile = here.get(column.column);
+    const readAs = earlier.kinds?.[column.column];
+    const why = profile ? obstacle(column, readAs, profile) : 'This sample has no such column.';
+    if (profile && why === null) kept.set(column.column, asHere(column, readAs, profile, lost));
+    else if (why !== null) notCarried.push({ column: column.column, why });
   }
   const before = new Set(earlier.columns.map(({ column }) => column));
   for (const { column } of profiles)
@@ -116,12 +126,12 @@ export function takeOver(
   const columns = draft.columns.map((column): DefinedColumn => {
     const known = kept.get(column.column);
     if (known)
-      return { ...column, role: known.role, protected: known.protected || column.protected, citation: known.citation, special: known.special, reason: known.reason, ...(known.amounts && { amounts: known.amounts }) };
+      return { ...column, kind: known.kind, role: known.role, protected: known.protected || column.protected, citation: known.citation, special: known.special, reason: known.reason, ...(known.amounts && { amounts: known.amounts }) };
     return taken.has(column.role) ? { ...column, role: 'not used', reason: 'Another column has this role in the earlier sample.' } : column;
   }); // prettier-ignore
   const content = withPartition(withColumns(draft, columns));
   const decision = earlier.columns.find(({ role }) => role === 'decision')?.column ?? null;
-  const definition = earlier.meanings && carryMeanings(earlier.meanings, decision, content, here);
+  const definition = earlier.meanings && carryMeanings(earlier.meanings, decision, content, here, lost);
   return {
     content: { ...content, ...definition?.content },
     entries: (earlier.entries ?? []).filter(({ column }) => kept.has(column)),
@@ -145,11 +155,11 @@ function carryMeanings(
   decision: string | null,
   draft: DraftContent,
   here: ReadonlyMap<string, ColumnProfile>,
+  lost: Lost,
 ): { content: Partial<DraftContent>; told: NonNullable<CarriedDictionary['definition']> } {
   const words = { gone: 'is not in this file', here: 'here' };
   const content: { -readonly [Key in keyof DraftContent]?: DraftContent[Key] } = {};
   const carried: NonNullable<CarriedDictionary['definition']>['carried'] = [];
-  const lost: Lost = [];
   /** The profile of this column where it has this role here too; otherwise that it has not is said. */
   const holder = (role: ColumnRole, column: string, what: string): ColumnProfile | undefined => {
     if (draft.columns.find((one) => one.role === role)?.column === column) return here.get(column);
@@ -184,11 +194,18 @@ function draftOutcome(outcome: OutcomeDefinition): DraftContent['outcome'] {
   return { good: [], bad: [], indeterminate: [], excluded: [], rule: { bad, indeterminate, missing, monthsOnBook: outcome.monthsOnBook } };
 }
 
-function obstacle(column: DefinedColumn, profile: ColumnProfile | undefined): string | null {
-  if (!profile) return 'This sample has no such column.';
-  if (profile.kind !== column.kind && !(profile.kind === 'numeric' && column.kind === 'categorical'))
-    return `It is ${profile.kind} here, and was ${column.kind}.`;
+function obstacle(column: DefinedColumn, readAs: ColumnKind | undefined, profile: ColumnProfile): string | null {
+  if (keptKind(column, readAs, profile) === null) return `It is ${profile.kind} here, and was ${column.kind}.`;
   const stop = profile.flags.find(({ weight }) => weight === 'stop');
   if (stop && column.role !== 'not used' && column.role !== 'identifier') return `Here it cannot be used: ${stop.finding}`;
   return null;
+}
+
+/** Texts there that are numbers here take their special codes with them where these are numbers too. */
+function asHere(column: DefinedColumn, readAs: ColumnKind | undefined, profile: ColumnProfile, lost: Lost): DefinedColumn {
+  const kind = keptKind(column, readAs, profile) ?? profile.kind;
+  if (kind === column.kind) return column;
+  const { special, someLost } = codesOfNumbers(column.special);
+  if (someLost) lost.push({ what: column.column, why: 'It is numeric here: special codes that are no numbers were left out.' });
+  return { ...column, kind, special };
 }

@@ -6,6 +6,7 @@ import { MatInputModule } from '@angular/material/input';
 import { MatSelectModule } from '@angular/material/select';
 import type { ColumnProfile, ColumnRole } from '@tallystone/contracts/samples/columns';
 import type { DefinedColumn, SpecialCode } from '@tallystone/contracts/samples/definition';
+import { canBe } from '@tallystone/contracts/samples/kinds';
 import { unnamedCode } from '@tallystone/contracts/samples/special-codes';
 import { count } from '../../../ui/numbers';
 import { plain } from './findings';
@@ -74,9 +75,9 @@ const roles: readonly ColumnRole[] = [
         <mat-form-field>
           <mat-label>Values are</mat-label>
           <mat-select [value]="entry.kind" [disabled]="!editable() || profile().hashed" (selectionChange)="setKind($event.value)">
-            <mat-option value="numeric" [disabled]="!maybeNumeric()">numeric</mat-option>
+            <mat-option value="numeric" [disabled]="!canBe('numeric', profile())">numeric</mat-option>
             <mat-option value="categorical">categorical</mat-option>
-            <mat-option value="date" [disabled]="profile().kind !== 'date'">date</mat-option>
+            <mat-option value="date" [disabled]="!canBe('date', profile())">date</mat-option>
           </mat-select>
         </mat-form-field>
         <mat-checkbox [checked]="entry.protected" [disabled]="!editable()" (change)="set({ protected: $event.checked })">
@@ -221,6 +222,7 @@ export class ColumnEditor {
   readonly readAgain = output<readonly string[]>();
 
   protected readonly roles = roles;
+  protected readonly canBe = canBe;
   protected readonly unnamed = unnamedCode;
   protected readonly codes = writeListed;
   protected readonly isNamed = ({ label }: SpecialCode): boolean => label.trim() !== '' && label !== unnamedCode;
@@ -252,12 +254,6 @@ export class ColumnEditor {
     const column = this.column();
     if (column) this.changed.emit({ ...column, ...change });
   }
-
-  /** Numbers, or numbers among which there are codes in words. */
-  protected readonly maybeNumeric = computed(() => {
-    const { kind, flags } = this.profile();
-    return kind === 'numeric' || flags.some(({ code, values }) => code === 'numbers-as-text' && values?.length);
-  });
 
   /** Words among numbers that are no special codes yet, without blanks, which can be missing only. */
   protected nameable(values: readonly string[] = []): string[] {
