@@ -131,8 +131,8 @@ describe('files that are held until somebody answers', () => {
     [
       'negative-weights',
       [
-        'weight has weights below zero in 10 rows, the smallest -1. Weights are zero or more: mend them in the file, or give the role to another column.',
-        'weight has weights that are no numbers in 10 rows: "NaN". Mend them in the file, or read it with other choices.',
+        'weight has weights below zero in 10 rows that need one, the smallest -1. Weights are zero or more: mend them in the file, exclude these rows with a reason (weight is below 0), or give the role to another column.',
+        'weight has weights that are no numbers in 10 rows that need one: "NaN". Mend them in the file, read it with other choices, or exclude these rows with a reason (weight is one of these).',
       ],
     ],
     ['zero-weights', ['The weights in "weight" are all zero.']],

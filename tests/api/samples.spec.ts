@@ -455,6 +455,40 @@ describe('outcomes that cannot be fitted are blocked with their values and count
     expect(await withWeight('1 0 2')).toEqual([]);
   });
 
+  it('weights that are none, in the rows that need one alone: excluded rows, and those without an outcome, need none', async () => {
+    // 12 rows without a weight, 20 below zero; the goods among the latter are 13.
+    const outcome = (row: number): string => (row % 3 === 0 ? '1' : '0');
+    const weight = (row: number): string => (row < 12 ? '' : row < 32 ? '-2' : row === 40 ? '0' : '1.5');
+    const csv = `income,bad,w\n${Array.from({ length: 200 }, (_, row) => `${1000 + ((row * 37) % 500)},${outcome(row)},${weight(row)}`).join('\n')}\n`;
+    const { path, etag, content } = await draftOf(csv);
+    let tag = etag;
+    const said = async (change: Partial<DraftContent>): Promise<string[]> => {
+      const columns = content.columns.map((column) => (column.column === 'w' ? { ...column, role: 'weight' as const } : column));
+      const { body, headers } = await modeller.put(`${path}/draft`).set('If-Match', tag).send({ ...content, columns, ...change }).expect(200);
+      tag = headers.etag;
+      return (body.problems as { code: string; message: string }[]).filter(({ code }) => code.endsWith('-weight')).map(({ message }) => message);
+    };
+    const below = (rows: number): string =>
+      `w has weights below zero in ${rows} rows that need one, the smallest -2. Weights are zero or more: mend them in the file, exclude these rows with a reason (w is below 0), or give the role to another column.`;
+    const missing =
+      'The weight w is missing in 12 rows that need one; zero is allowed. Mend them in the file, exclude these rows with a reason (w is missing), or give the role to another column.';
+    expect(await said({})).toEqual([below(20), missing]);
+    const none = { reason: 'no weight', combine: 'all', tests: [{ column: 'w', missing: true }] } as const;
+    const negative = { reason: 'no weight below zero', combine: 'all', tests: [{ column: 'w', below: 0 }] } as const;
+    const rule = ({ tests, ...rest }: typeof none | typeof negative) => ({ ...rest, tests: [...tests] });
+    expect(await said({ exclusions: [rule(none)] })).toEqual([below(20)]);
+    expect(await said({ exclusions: [rule(negative)] })).toEqual([missing]);
+    // A good that is excluded by its outcome, or indeterminate, enters no fit.
+    for (const other of ['excluded', 'indeterminate'] as const)
+      expect(await said({ exclusions: [rule(none)], outcome: { good: [], bad: ['1'], indeterminate: [], excluded: [], [other]: ['0'] } })).toEqual([below(7)]);
+    // Values that mean nothing yet may become goods: their rows are counted, too.
+    expect(await said({ outcome: { good: [], bad: ['1'], indeterminate: [], excluded: [] } })).toEqual([below(20), missing]);
+    expect(await said({ exclusions: [rule(none), rule(negative)] })).toEqual([]);
+    const { body } = await modeller.post(`${path}/draft/check`).expect(200);
+    expect(body.problems).toEqual([]);
+    expect(body.counts.waterfall.slice(1, 3).map(({ out }: { out: number }) => out)).toEqual([12, 20]);
+  }); // prettier-ignore
+
   it('weights beside the bad rate of the rows: where bads were sampled more often the two differ', async () => {
     // Every third is bad and stands for one applicant, every good for four.
     const { path, etag, content } = await draftOf(

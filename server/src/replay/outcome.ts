@@ -100,7 +100,7 @@ const given = (problem: ReplayProblem | null): ReplayProblem[] => (problem === n
  * `exclusion` with the number after the last rule. Values that say nothing are problems, all at once.
  */
 export function assignOutcome(
-  spec: Specification,
+  spec: Pick<Specification, 'exclusions' | 'outcome' | 'declined'>,
   columns: Columns,
   exclusion: Uint16Array,
   problems: ReplayProblem[],
@@ -125,7 +125,7 @@ export function assignOutcome(
   return { outcome, saysBad };
 }
 
-function declinedRows(spec: Specification, columns: Columns): ((row: number) => boolean) | null {
+function declinedRows(spec: Pick<Specification, 'declined'>, columns: Columns): ((row: number) => boolean) | null {
   if (spec.declined === null) return null;
   const column = columns.text(spec.declined.column);
   if (column === null) return null;

@@ -2,6 +2,9 @@ import type { Columns } from './columns';
 import { ValueCounts, type ReplayProblem } from './problems';
 import { BAD, DECLINED, GOOD } from './types';
 
+/** Whether a row of this outcome enters a fit or a metric. */
+export const needsWeight = (outcome: number): boolean => outcome === GOOD || outcome === BAD || outcome === DECLINED;
+
 /**
  * Weights of the rows that enter a fit or a metric (goods, bads, declined); other rows get 0. Zero is allowed; missing, negative and
  * unreadable weights are problems, and so are weights that are all zero.
@@ -13,7 +16,7 @@ export function readWeights(name: string, columns: Columns, outcome: Uint8Array,
   const faults = new ValueCounts();
   let total = 0;
   for (let row = 0; row < weights.length; row++) {
-    if (outcome[row] !== GOOD && outcome[row] !== BAD && outcome[row] !== DECLINED) continue;
+    if (!needsWeight(outcome[row])) continue;
     const weight = view.number(row);
     if (weight >= 0) {
       weights[row] = weight;

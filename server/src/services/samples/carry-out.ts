@@ -1,7 +1,5 @@
 import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import type { DraftContent, SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
-import { outcomeColumns } from '@tallystone/contracts/specification/outcome';
-import type { RowTest } from '@tallystone/contracts/specification/types';
 import type { Context } from '../../context';
 import type { SourceColumn } from '../../replay/source';
 import { openSample } from '../../storage/columnStore';
@@ -11,6 +9,7 @@ import { profilesOf } from './columns-of';
 import { define } from './define';
 import type { FoundSample } from './find-sample';
 import { problemItem } from './problem-item';
+import { columnsOfSettled } from './settled';
 import { weightFaultsOf } from './weight-faults';
 
 export type CarriedOut =
@@ -49,14 +48,7 @@ export async function carryOut(
 
 /** Every column that the head of a specification reads. */
 export function columnsOf(content: SampleDefinitionContent): Set<string> {
-  const names = new Set(outcomeColumns(content.outcome));
-  const ofTest = (test: RowTest): void => {
-    if ('all' in test) test.all.forEach(ofTest);
-    else if ('any' in test) test.any.forEach(ofTest);
-    else names.add(test.column);
-  };
-  content.exclusions.forEach(ofTest);
-  if (content.declined) names.add(content.declined.column);
+  const names = columnsOfSettled(content);
   if (content.weight) names.add(content.weight.column);
   if ('column' in content.partition) names.add(content.partition.column);
   else {

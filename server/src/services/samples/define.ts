@@ -1,19 +1,13 @@
 import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import { type ColumnProfile, type ColumnRole, singleRoles } from '@tallystone/contracts/samples/columns';
-import type {
-  ColumnTest,
-  DefinedColumn,
-  DraftContent,
-  DraftOutcomeRule,
-  ExclusionRule,
-  SampleDefinitionContent,
-} from '@tallystone/contracts/samples/definition';
+import type { DefinedColumn, DraftContent, DraftOutcomeRule, SampleDefinitionContent } from '@tallystone/contracts/samples/definition';
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
 import { unnamedCode } from '@tallystone/contracts/samples/special-codes';
-import type { Exclusion, GroupsBy, OutcomeDefinition, Partition } from '@tallystone/contracts/specification/types';
+import type { GroupsBy, Partition } from '@tallystone/contracts/specification/types';
 import { thin } from '../../profiling/kind';
 import { type NumberReader, numberReader } from '../../reading/index';
-import { type WeightFaults, weightSentences } from './weight-faults';
+import { type Say, checkRule, declinedOf, exclusionOf, identifiersOf, outcomeOf } from './settled';
+import { type WeightFaults, weightSentences } from './weight-sentences';
 
 export interface DefinedSample {
   readonly sha256: string;
@@ -39,9 +33,6 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
   const profiles = new Map(sample.profiles.map((profile) => [profile.column, profile]));
   const holder = (role: ColumnRole): DefinedColumn | undefined => draft.columns.find((column) => column.role === role);
 
-  // Kept as keyed hashes from the confirmation on: no rule can rest on their values.
-  const identifiers = new Set(draft.columns.filter(({ role }) => role === 'identifier').map(({ column }) => column));
-
   checkColumns(draft, profiles, { reader: numberReader(sample.reading), weights: sample.weights }, say);
   const outcome = holder('outcome');
   if (!outcome)
@@ -57,6 +48,7 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
     });
   if (draft.declined && draft.declined.values.length === 0)
     say('no-declined', 'Say which values of the decision mean declined, or treat nobody as declined.', { section: 'outcome' });
+  const identifiers = identifiersOf(draft);
   draft.exclusions.forEach((rule, place) => checkRule(rule, place, profiles, identifiers, say));
   const groupKey = holder('group key');
   // Of hashes the file knows nothing: their groups are drawn by the rows where they begin.
@@ -70,10 +62,7 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
       data: { sha256: sample.sha256, ...withoutDefault(sample.reading) },
       exclusions: draft.exclusions.map(exclusionOf),
       outcome: outcomeOf(draft.outcome, outcome.column),
-      declined:
-        draft.declined && decision
-          ? { column: decision.column, values: draft.declined.values, method: 'none', bands: 10, uplift: 1.5 }
-          : null,
+      declined: draft.declined && decision ? declinedOf(draft.declined, decision.column) : null,
       weight: weight ? { column: weight.column } : null,
       partition,
       ...groupsBy,
@@ -97,8 +86,6 @@ interface Known {
   readonly reader: NumberReader;
   readonly weights: WeightFaults | null;
 }
-
-type Say = (code: string, message: string, where: ProblemItem['where']) => void;
 
 function checkColumns(draft: DraftContent, profiles: ReadonlyMap<string, ColumnProfile>, known: Known, say: Say): void {
   const seen = new Set<string>();
@@ -254,43 +241,6 @@ function checkOutcome(draft: DraftContent, profile: ColumnProfile | undefined, s
   }
 }
 
-function checkRule(
-  rule: ExclusionRule,
-  place: number,
-  profiles: ReadonlyMap<string, ColumnProfile>,
-  identifiers: ReadonlySet<string>,
-  say: Say,
-): void {
-  const where = { section: 'exclusions', rule: place + 1 };
-  const name = rule.reason.trim() === '' ? `Exclusion ${place + 1}` : `“${rule.reason.trim()}”`;
-  if (rule.reason.trim() === '')
-    say('no-reason', `${name} has no reason. Say why these rows do not belong in the sample.`, where);
-  if (rule.tests.length === 0) say('no-test', `${name} tests nothing.`, where);
-  rule.tests.forEach((test, index) => {
-    const at = { ...where, test: index + 1, column: test.column };
-    const profile = profiles.get(test.column);
-    if (!profile) {
-      say('no-such-column', `${name} tests ${test.column || 'no column'}, which the file does not have.`, at);
-      return;
-    }
-    const { column, ...conditions } = test;
-    const stated = Object.values(conditions).filter((condition) => condition !== undefined);
-    if (stated.length === 0) say('no-condition', `${name} says nothing about ${column}.`, at);
-    if (test.in?.length === 0 || test.notIn?.length === 0) say('no-values', `${name} lists no value of ${column}.`, at);
-    const limits = [test.below, test.atMost, test.above, test.atLeast].filter((one) => one !== undefined);
-    if (limits.length > 0 && profile.kind === 'categorical')
-      say('not-comparable', `${name} compares ${column} with a limit, and it holds neither numbers nor dates.`, at);
-    if (profile.kind === 'numeric' && limits.some((one) => typeof one !== 'number'))
-      say('not-comparable', `${name} compares the numbers of ${column} with a date.`, at);
-    if (profile.kind === 'date' && limits.some((one) => typeof one !== 'string'))
-      say('not-comparable', `${name} compares the dates of ${column} with a number.`, at);
-    if ((profile.hashed || identifiers.has(column)) && (test.in || test.notIn))
-      say('kept-as-hashes', `${name} lists values of ${column}, which are kept as keyed hashes.`, at);
-    else if (!profile.hashed && identifiers.has(column) && limits.length > 0)
-      say('kept-as-hashes', `${name} compares ${column} with a limit, and an identifier is kept as keyed hashes.`, at);
-  });
-}
-
 /** The columns of a rule hold numbers, and are known after the decision only: none of them can be a characteristic. */
 function checkRuleOfOutcome(
   draft: DraftContent,
@@ -320,22 +270,6 @@ function checkRuleOfOutcome(
       section,
       column,
     });
-}
-
-function outcomeOf({ rule, ...values }: DraftContent['outcome'], column: string): OutcomeDefinition {
-  if (!rule) return { column, ...values };
-  const { bad, indeterminate, missing, monthsOnBook } = rule;
-  return { daysPastDue: { column, bad, indeterminate, missing }, monthsOnBook };
-}
-
-const testOf = (test: ColumnTest): ColumnTest =>
-  Object.fromEntries(Object.entries(test).filter(([, value]) => value !== undefined)) as ColumnTest;
-
-function exclusionOf(rule: ExclusionRule): Exclusion {
-  const reason = rule.reason.trim();
-  const tests = rule.tests.map(testOf);
-  if (tests.length === 1) return { reason, ...tests[0] };
-  return rule.combine === 'all' ? { reason, all: tests } : { reason, any: tests };
 }
 
 function partitionOf(

@@ -3,24 +3,18 @@ import type { DraftContent } from '@tallystone/contracts/samples/definition';
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
 import type { DataReading } from '@tallystone/contracts/specification/types';
 import type { Sequelize } from 'sequelize';
-import { Columns } from '../../replay/columns';
+import { Columns, type NumberView } from '../../replay/columns';
+import { applyExclusions } from '../../replay/exclusions';
+import { assignOutcome } from '../../replay/outcome';
 import type { SourceColumn } from '../../replay/source';
+import { NO_OUTCOME } from '../../replay/types';
+import { needsWeight } from '../../replay/weight';
 import { openSample } from '../../storage/columnStore';
-import { thin } from '../../profiling/kind';
-
-/** What rows of the file hold in a column of weights that is no weight. Counts are rows. */
-export interface WeightFaults {
-  readonly missing: number;
-  readonly negative: number;
-  /** Null without a negative one. */
-  readonly smallest: number | null;
-  readonly unreadable: number;
-  /** Texts that are no numbers, the most frequent first, at most three. */
-  readonly examples: readonly string[];
-}
+import { type Settled, columnsOfSettled, settledOf } from './settled';
+import type { WeightFaults } from './weight-sentences';
 
 /**
- * Counts what is wrong with the weights of a draft, in every row of the file; null where nothing can be. A profile alone cannot tell: it has the
+ * Counts what is wrong with the weights of a draft, in the rows that need one; null where nothing can be. A profile alone cannot tell: it has the
  * smallest value without its count, and leaves out what it takes for a special code, as -1 often is.
  */
 export async function weightFaultsOf(
@@ -32,8 +26,19 @@ export async function weightFaultsOf(
   const name = draft.columns.find(({ role }) => role === 'weight')?.column;
   const profile = profiles.find(({ column }) => column === name);
   if (!profile || profile.hashed || sample.reading === null || sample.rows === null || !isDoubtful(profile)) return null;
+  const { sha256, reading, rows } = sample;
+  const data = { sha256, ...reading };
   const column = (await openSample(sequelize, sample.id, [profile.column])).column(profile.column);
-  return column ? countFaults(profile.column, column, sample.rows, { sha256: sample.sha256, ...sample.reading }) : null;
+  if (!column) return null;
+  const view = viewOf(profile.column, column, rows, data);
+  const faulty = faultyRows(view, rows);
+  if (faulty.length === 0) return null;
+  // Only where something is wrong the other columns are read, too.
+  const settled = settledOf(draft, profiles);
+  const names = columnsOfSettled(settled);
+  const source = await openSample(sequelize, sample.id, names);
+  const needs = rowsWithWeight(settled, new Columns({ rows, column: (name) => source.column(name) }, data));
+  return countFaults(faulty.filter(needs), view);
 }
 
 /** Whether a row of this column may hold something else than a number of at least 0. */
@@ -44,14 +49,31 @@ const isDoubtful = ({ kind, missing, numeric, specialSuspects, flags }: ColumnPr
   specialSuspects.length > 0 ||
   flags.some(({ code }) => code === 'unreadable-numbers');
 
-function countFaults(name: string, column: SourceColumn, rows: number, reading: DataReading): WeightFaults {
-  const view = new Columns({ rows, column: () => column }, reading).numbers(name);
+function viewOf(name: string, column: SourceColumn, rows: number, data: DataReading): NumberView {
+  const view = new Columns({ rows, column: () => column }, data).numbers(name);
   if (!view) throw new Error(`Column ${name} cannot be read as numbers`);
+  return view;
+}
+
+function faultyRows(view: NumberView, rows: number): number[] {
+  const faulty: number[] = [];
+  for (let row = 0; row < rows; row++) if (!(view.number(row) >= 0)) faulty.push(row);
+  return faulty;
+}
+
+/** Whether a row needs a weight, as far as the draft can tell: whoever has no meaning yet may still become a good or a bad. */
+function rowsWithWeight({ exclusions, outcome, declined }: Settled, columns: Columns): (row: number) => boolean {
+  const exclusion = applyExclusions(exclusions, columns, []);
+  if (!outcome) return (row) => exclusion[row] === 0;
+  const found = assignOutcome({ exclusions, outcome, declined }, columns, exclusion, []).outcome;
+  return (row) => needsWeight(found[row]) || (exclusion[row] === 0 && found[row] === NO_OUTCOME);
+}
+
+function countFaults(faulty: readonly number[], view: NumberView): WeightFaults {
   let [missing, negative, unreadable, smallest] = [0, 0, 0, 0];
   const texts = new Map<string, number>();
-  for (let row = 0; row < rows; row++) {
+  for (const row of faulty) {
     const weight = view.number(row);
-    if (weight >= 0) continue;
     if (weight < 0) {
       negative++;
       smallest = Math.min(smallest, weight);
@@ -68,26 +90,4 @@ function countFaults(name: string, column: SourceColumn, rows: number, reading: 
     .slice(0, 3)
     .map(([text]) => text);
   return { missing, negative, smallest: negative > 0 ? smallest : null, unreadable, examples };
-}
-
-/** What is wrong, a sentence for each fault with its count. */
-export function weightSentences(column: string, faults: WeightFaults): { code: string; message: string }[] {
-  const said: { code: string; message: string }[] = [];
-  const rows = (count: number): string => `${thin(count)} ${count === 1 ? 'row' : 'rows'}`;
-  if (faults.negative > 0)
-    said.push({
-      code: 'negative-weight',
-      message: `${column} has weights below zero in ${rows(faults.negative)}, the smallest ${faults.smallest}. Weights are zero or more: mend them in the file, or give the role to another column.`,
-    });
-  if (faults.unreadable > 0)
-    said.push({
-      code: 'unreadable-weight',
-      message: `${column} has weights that are no numbers in ${rows(faults.unreadable)}: ${faults.examples.map((text) => JSON.stringify(text)).join(', ')}. Mend them in the file, or read it with other choices.`,
-    });
-  if (faults.missing > 0)
-    said.push({
-      code: 'missing-weight',
-      message: `${column} is missing in ${rows(faults.missing)}. Every row needs a weight; zero is allowed.`,
-    });
-  return said;
 }
