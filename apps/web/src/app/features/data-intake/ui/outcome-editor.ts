@@ -6,6 +6,7 @@ import { MatSelectModule } from '@angular/material/select';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
 import type { DraftContent, DraftOutcome, DraftOutcomeRule, RuleCounts } from '@tallystone/contracts/samples/definition';
 import { count } from '../../../ui/numbers';
+import { mappedValues } from './mapped-values';
 import { OutcomeRuleEditor } from './outcome-rule-editor';
 import { type MappedValue, type Meaning, ValueMapping } from './value-mapping';
 
@@ -56,6 +57,7 @@ const meanings: readonly Meaning[] = [
         [values]="values()"
         [meanings]="meanings"
         [rows]="profile.rows"
+        [complete]="profile.valuesComplete"
         [editable]="editable()"
         (mapped)="map($event)"
       />
@@ -66,13 +68,14 @@ const meanings: readonly Meaning[] = [
         <p class="ts-caption">
           These applicants have no outcome: they are counted, and take no part in the fit. Conclusions hold for accepts only.
         </p>
-        @for (value of profile.mostFrequent; track value.value) {
+        @for (entry of decisions(); track entry.value) {
           <mat-checkbox
-            [checked]="isDeclined(value.value)"
+            [checked]="entry.meaning !== null"
             [disabled]="!editable()"
-            (change)="decline(value.value, $event.checked)"
+            (change)="decline(entry.value, $event.checked)"
           >
-            {{ value.value }} <span class="ts-second">({{ count(value.count) }})</span>
+            {{ entry.value === '' ? 'empty' : entry.value }}
+            <span class="ts-second">({{ entry.count === null ? absent(profile) : count(entry.count) }})</span>
           </mat-checkbox>
         }
       </fieldset>
@@ -109,6 +112,7 @@ export class OutcomeEditor {
   readonly declined = output<DraftContent['declined']>();
   protected readonly meanings = meanings;
   protected readonly count = count;
+  protected readonly absent = ({ valuesComplete }: ColumnProfile): string => (valuesComplete ? 'not in this file' : 'not among those listed');
 
   protected readonly rule = computed(() => this.content().outcome.rule ?? null);
   /** An outcome has a few values; days past due are numbers. */
@@ -120,15 +124,12 @@ export class OutcomeEditor {
   });
   protected readonly values = computed<MappedValue[]>(() => {
     const profile = this.column();
-    if (!profile) return [];
-    const { outcome } = this.content();
-    const meaningOf = (value: string): string | null =>
-      meanings.map(({ key }) => key as Valued).find((key) => outcome[key].includes(value)) ?? null;
-    return [...profile.mostFrequent, ...profile.missingTokens].map(({ value, count: rows }) => ({
-      value,
-      count: rows,
-      meaning: meaningOf(value),
-    }));
+    const { rule: _rule, ...lists } = this.content().outcome;
+    return profile ? mappedValues(profile, lists) : [];
+  });
+  protected readonly decisions = computed<MappedValue[]>(() => {
+    const profile = this.decision();
+    return profile ? mappedValues(profile, { declined: this.content().declined?.values ?? [] }) : [];
   });
 
   /** Bad from 90 days past due, indeterminate from 30 until somebody says otherwise (common practice). */
@@ -152,10 +153,6 @@ export class OutcomeEditor {
     };
     if (meaning !== null) next[meaning as Valued].push(value);
     this.outcome.emit(next);
-  }
-
-  protected isDeclined(value: string): boolean {
-    return this.content().declined?.values.includes(value) ?? false;
   }
 
   protected decline(value: string, on: boolean): void {

@@ -5,6 +5,7 @@ import { MatInputModule } from '@angular/material/input';
 import { MatRadioModule } from '@angular/material/radio';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
 import type { DraftPartition } from '@tallystone/contracts/samples/definition';
+import { mappedValues } from './mapped-values';
 import { type MappedValue, type Meaning, ValueMapping } from './value-mapping';
 
 const parts: readonly Meaning[] = [
@@ -93,6 +94,7 @@ const parts: readonly Meaning[] = [
         [values]="values()"
         [meanings]="parts"
         [rows]="column()?.rows ?? 1"
+        [complete]="column()?.valuesComplete ?? true"
         [editable]="editable()"
         (mapped)="map($event)"
       />
@@ -134,9 +136,9 @@ export class PartitionEditor {
   protected readonly values = computed<MappedValue[]>(() => {
     const partition = this.partition();
     if (partition.by !== 'column') return [];
-    const meaningOf = (value: string): string | null =>
-      (['development', 'holdOut', 'outOfTime'] as const).find((part) => partition[part].includes(value)) ?? null;
-    return (this.column()?.mostFrequent ?? []).map(({ value, count }) => ({ value, count, meaning: meaningOf(value) }));
+    const { by: _by, ...lists } = partition;
+    const column = this.column();
+    return column ? mappedValues(column, lists) : [];
   });
 
   protected choose(by: 'seed' | 'column'): void {

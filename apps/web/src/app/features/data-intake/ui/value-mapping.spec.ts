@@ -56,4 +56,19 @@ describe('the meaning of a value', () => {
     press('Good');
     expect(told).toEqual([]);
   });
+
+  it('can be taken from a value that the column does not have, which is said', async () => {
+    const shown = (): string => (fixture.nativeElement as HTMLElement).textContent.replace(/\s+/g, ' ');
+    show('good');
+    expect(shown()).not.toContain('not in this file');
+    fixture.componentRef.setInput('values', [{ value: 'open', count: null, meaning: 'good' }]);
+    fixture.detectChanges();
+    expect(shown()).toContain('opennot in this file');
+    press('Good');
+    await later();
+    expect(told).toEqual([{ value: 'open', meaning: null }]);
+    fixture.componentRef.setInput('complete', false);
+    fixture.detectChanges();
+    expect(shown()).toContain('opennot among those listed');
+  });
 });

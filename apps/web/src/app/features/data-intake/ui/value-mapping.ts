@@ -1,11 +1,11 @@
-import { ChangeDetectionStrategy, Component, input, output } from '@angular/core';
+import { ChangeDetectionStrategy, Component, computed, input, output } from '@angular/core';
 import { MatButtonToggleModule } from '@angular/material/button-toggle';
 import { count, share } from '../../../ui/numbers';
 
-/** One value of a column with its count and what it is taken to mean; null = nothing yet. */
+/** One value of a column with its count (null = the column does not list it) and what it is taken to mean; null = nothing yet. */
 export interface MappedValue {
   readonly value: string;
-  readonly count: number;
+  readonly count: number | null;
   readonly meaning: string | null;
 }
 
@@ -24,8 +24,12 @@ export interface Meaning {
       @for (entry of values(); track entry.value) {
         <div class="row" [class.open]="entry.meaning === null">
           <span class="value">{{ entry.value === '' ? 'empty' : entry.value }}</span>
-          <span class="ts-number">{{ count(entry.count) }}</span>
-          <span class="ts-number ts-second">{{ share(entry.count / rows()) }}</span>
+          @if (entry.count === null) {
+            <span class="absent ts-second">{{ absent() }}</span>
+          } @else {
+            <span class="ts-number">{{ count(entry.count) }}</span>
+            <span class="ts-number ts-second">{{ share(entry.count / rows()) }}</span>
+          }
           <mat-button-toggle-group
             [attr.aria-label]="(entry.value === '' ? 'empty' : entry.value) + ' means'"
             [value]="entry.meaning"
@@ -44,8 +48,14 @@ export interface Meaning {
         </div>
       }
     </div>
+    @if (complete() && hasAbsent()) {
+      <p class="ts-caption">To take out a value that is not in this file, press its meaning again.</p>
+    }
   `,
   styles: `
+    .absent {
+      grid-column: span 2;
+    }
     .row {
       display: grid;
       grid-template-columns: minmax(80px, 1fr) 80px 72px auto;
@@ -80,10 +90,14 @@ export class ValueMapping {
   readonly meanings = input.required<readonly Meaning[]>();
   readonly rows = input(1);
   readonly editable = input(false);
+  /** Whether the column lists all of its values. */
+  readonly complete = input(true);
   /** Null takes the meaning back. */
   readonly mapped = output<{ value: string; meaning: string | null }>();
   protected readonly count = count;
   protected readonly share = share;
+  protected readonly absent = computed(() => (this.complete() ? 'not in this file' : 'not among those listed'));
+  protected readonly hasAbsent = computed(() => this.editable() && this.values().some((entry) => entry.count === null));
 
   /** Chosen by the press that is under way, which must not take it back too. */
   private fresh: string | null = null;
