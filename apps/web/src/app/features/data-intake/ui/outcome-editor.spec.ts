@@ -68,4 +68,12 @@ describe('the outcome under edit', () => {
     await new Promise((resolve) => setTimeout(resolve));
     expect(told).toEqual([null, { ...content.outcome, bad: ['1'] }]);
   });
+
+  it('says of declined applicants that whether they are inferred is chosen with each fit', () => {
+    show([profile('bad'), profile('decision')]);
+    expect(shown()).toContain(
+      'Whether a fit infers one for them is chosen with each fit, and the fit on accepts only always stands beside it.',
+    );
+    expect(shown()).not.toContain('take no part in the fit');
+  });
 });

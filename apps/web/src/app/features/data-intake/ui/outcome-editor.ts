@@ -66,7 +66,8 @@ const meanings: readonly Meaning[] = [
       <fieldset>
         <legend>Declined, by {{ profile.column }}</legend>
         <p class="ts-caption">
-          These applicants have no outcome: they are counted, and take no part in the fit. Conclusions hold for accepts only.
+          These applicants have no outcome: they are counted. Whether a fit infers one for them is chosen with each fit, and the fit
+          on accepts only always stands beside it.
         </p>
         @for (entry of decisions(); track entry.value) {
           <mat-checkbox
