@@ -435,6 +435,27 @@ describe('outcomes that cannot be fitted are blocked with their values and count
     });
   });
 
+  it('rows in no partition, until the missing value has a part', async () => {
+    const csv = `income,split,bad\n${Array.from({ length: 200 }, (_, row) => `${1000 + ((row * 37) % 500)},${['dev', '', 'test', 'dev'][row % 4]},${row % 5 === 0 ? 1 : 0}`).join('\n')}\n`;
+    const { path, etag, content } = await draftOf(csv);
+    expect(content.partition).toEqual({ by: 'column', development: ['dev'], holdOut: ['test'], outOfTime: [] });
+    const { body } = await modeller.post(`${path}/draft/check`).expect(200);
+    expect(body.problems).toMatchObject([
+      {
+        code: 'unlisted-partition',
+        message: '50 rows are in no partition: empty (50). Say which part each value means, or exclude these rows.',
+      },
+    ]);
+    const partition = { ...content.partition, outOfTime: [''] };
+    await modeller
+      .put(`${path}/draft`)
+      .set('If-Match', etag)
+      .send({ ...content, partition })
+      .expect(200);
+    const given = await modeller.post(`${path}/draft/check`).expect(200);
+    expect(given.body).toMatchObject({ problems: [], counts: { partitions: { outOfTime: { rows: 50 } } } });
+  });
+
   it('weights below zero, that are no numbers, or all zero', async () => {
     const outcomes = twenty((row) => (row % 3 === 0 ? '1' : '0'));
     const withWeight = async (weights: string): Promise<string[]> => {

@@ -39,7 +39,7 @@ function byColumn(partition: PartitionByColumn, columns: Columns, outcome: Uint8
   const problem = faults.problem(
     'unlisted-partition',
     partition.column,
-    (listed, rows) => `${rows} row${rows === 1 ? ' is' : 's are'} in no partition: ${listed}.`,
+    (listed, rows) => `${rows} row${rows === 1 ? ' is' : 's are'} in no partition: ${listed}. Say which part each value means, or exclude these rows.`,
   );
   if (problem !== null) problems.push(problem);
   return assigned;

@@ -5,6 +5,7 @@ import { MatInputModule } from '@angular/material/input';
 import { MatRadioModule } from '@angular/material/radio';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
 import type { DraftPartition } from '@tallystone/contracts/samples/definition';
+import { count } from '../../../ui/numbers';
 import { mappedValues } from './mapped-values';
 import { type MappedValue, type Meaning, ValueMapping } from './value-mapping';
 
@@ -98,6 +99,9 @@ const parts: readonly Meaning[] = [
         [editable]="editable()"
         (mapped)="map($event)"
       />
+      @if (unlisted(); as words) {
+        <p>{{ words }}</p>
+      }
     }
   `,
   styles: `
@@ -139,6 +143,15 @@ export class PartitionEditor {
     const { by: _by, ...lists } = partition;
     const column = this.column();
     return column ? mappedValues(column, lists) : [];
+  });
+
+  /** What the list leaves out, and what to do about it. */
+  protected readonly unlisted = computed(() => {
+    const column = this.column();
+    const rest = column ? column.distinct - column.mostFrequent.length : 0;
+    return column && rest > 0
+      ? `${column.column} has ${count(column.distinct)} different values, and ${count(rest)} of them are not listed here: rows with those are in no partition. Give the role of the partition to a column with fewer values, exclude these rows, or draw hold-out by a seed.`
+      : null;
   });
 
   protected choose(by: 'seed' | 'column'): void {
