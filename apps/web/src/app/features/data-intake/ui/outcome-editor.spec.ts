@@ -76,4 +76,18 @@ describe('the outcome under edit', () => {
     );
     expect(shown()).not.toContain('take no part in the fit');
   });
+
+  it('says why no column can be the outcome, and what to do', () => {
+    const many = { valuesComplete: false, distinct: 90 };
+    const offers = (): string => (shown().match(/(The file has one column|No column can).*?(?= Declined|$)/) ?? [''])[0];
+    show([profile('age,limit,bad', many)]);
+    expect(offers()).toMatch(/^The file has one column as it was read.*read it again with that one/);
+    show([profile('age', many), profile('limit', many)]);
+    expect(offers()).toMatch(/^No column can be the outcome by its values: each has more than 50.*State the outcome by rule/);
+    const rule = { bad: 90, indeterminate: 30, missing: 'refuse', monthsOnBook: null } as const;
+    show([profile('age', many), profile('limit', many)], { outcome: { ...content.outcome, rule } });
+    expect(offers()).toMatch(/^No column can have the days past due/);
+    show([profile('bad'), profile('age', many)]);
+    expect(offers()).toBe('');
+  });
 });

@@ -42,6 +42,9 @@ const meanings: readonly Meaning[] = [
         }
       </mat-select>
     </mat-form-field>
+    @if (noCandidates(); as words) {
+      <p>{{ words }}</p>
+    }
     @if (rule(); as rule) {
       <ts-outcome-rule-editor
         [rule]="rule"
@@ -66,8 +69,8 @@ const meanings: readonly Meaning[] = [
       <fieldset>
         <legend>Declined, by {{ profile.column }}</legend>
         <p class="ts-caption">
-          These applicants have no outcome: they are counted. Whether a fit infers one for them is chosen with each fit, and the fit
-          on accepts only always stands beside it.
+          These applicants have no outcome: they are counted. Whether a fit infers one for them is chosen with each fit, and the
+          fit on accepts only always stands beside it.
         </p>
         @for (entry of decisions(); track entry.value) {
           <mat-checkbox
@@ -113,7 +116,8 @@ export class OutcomeEditor {
   readonly declined = output<DraftContent['declined']>();
   protected readonly meanings = meanings;
   protected readonly count = count;
-  protected readonly absent = ({ valuesComplete }: ColumnProfile): string => (valuesComplete ? 'not in this file' : 'not among those listed');
+  protected readonly absent = ({ valuesComplete }: ColumnProfile): string =>
+    valuesComplete ? 'not in this file' : 'not among those listed';
 
   protected readonly rule = computed(() => this.content().outcome.rule ?? null);
   /** An outcome has a few values; days past due are numbers. */
@@ -122,6 +126,16 @@ export class OutcomeEditor {
     return this.profiles().filter(({ valuesComplete, distinct, kind, hashed }) =>
       byRule ? kind === 'numeric' && !hashed && distinct > 0 : valuesComplete && distinct > 0,
     );
+  });
+  /** Why there is nothing to choose, and what to do about it. */
+  protected readonly noCandidates = computed(() => {
+    const profiles = this.profiles();
+    if (profiles.length === 0 || this.candidates().length > 0) return null;
+    if (profiles.length === 1)
+      return `The file has one column as it was read, and none that could be the outcome. Look at its first rows under Reading: if another sign stands between the columns, read it again with that one; otherwise bring in a file with an outcome and characteristics.`;
+    return this.rule() === null
+      ? 'No column can be the outcome by its values: each has more than 50 different ones, or none at all. State the outcome by rule if a column has the days past due; otherwise bring in a file with a column of a few outcomes.'
+      : 'No column can have the days past due: none holds numbers as the file was read. Look at the decimal sign and the missing tokens under Reading, or state the outcome by the values of a column.';
   });
   protected readonly values = computed<MappedValue[]>(() => {
     const profile = this.column();
@@ -136,7 +150,9 @@ export class OutcomeEditor {
   /** Bad from 90 days past due, indeterminate from 30 until somebody says otherwise (common practice). */
   protected chooseRule(byRule: boolean): void {
     const { rule: _rule, ...values } = this.content().outcome;
-    this.outcome.emit(byRule ? { ...values, rule: { bad: 90, indeterminate: 30, missing: 'refuse', monthsOnBook: null } } : values);
+    this.outcome.emit(
+      byRule ? { ...values, rule: { bad: 90, indeterminate: 30, missing: 'refuse', monthsOnBook: null } } : values,
+    );
   }
 
   protected setRule(rule: DraftOutcomeRule): void {
