@@ -5,7 +5,8 @@ import { MatInputModule } from '@angular/material/input';
 import { MatSelectModule } from '@angular/material/select';
 import type { ColumnProfile } from '@tallystone/contracts/samples/columns';
 import type { ColumnTest, ExclusionRule } from '@tallystone/contracts/samples/definition';
-import { type Condition, conditionOf, conditions, testWith, valueOf } from './exclusion-test';
+import { type Condition, type Held, conditionOf, conditions, notHeld, testWith, valueOf } from './exclusion-test';
+import type { NumberSigns } from './listed-numbers';
 
 /** A test as its fields show it: as it is, or as it was typed with why it could not be taken. */
 interface ShownTest {
@@ -104,6 +105,8 @@ interface ShownTest {
               }
               @if (shown(place, index, test).message; as message) {
                 <p class="refused" role="alert">{{ message }} Until then the test stays as it was: {{ words(test) }}.</p>
+              } @else if (strangers(test); as unheld) {
+                <p class="unheld" role="status">{{ unheld }}</p>
               }
             </div>
           }
@@ -154,8 +157,11 @@ interface ShownTest {
     .test button {
       justify-self: start;
     }
-    .refused {
+    .refused,
+    .unheld {
       grid-column: 1 / -1;
+    }
+    .refused {
       color: var(--mat-sys-error);
     }
     .head mat-form-field:first-child {
@@ -175,6 +181,8 @@ interface ShownTest {
 export class ExclusionList {
   readonly rules = input.required<readonly ExclusionRule[]>();
   readonly columns = input.required<readonly ColumnProfile[]>();
+  /** How numbers are written in the file; null while that is not known. */
+  readonly signs = input<NumberSigns | null>(null);
   readonly editable = input(false);
   readonly changed = output<ExclusionRule[]>();
 
@@ -220,13 +228,24 @@ export class ExclusionList {
     return `${test.column} ${label} ${valueOf(test)}`.trim();
   }
 
+  protected strangers(test: ColumnTest): string | null {
+    return notHeld(test, this.byName().get(test.column));
+  }
+
+  private held(profile: ColumnProfile | undefined): Held | null {
+    const signs = this.signs();
+    return profile && signs
+      ? { signs, texts: [...profile.mostFrequent, ...profile.missingTokens].map(({ value }) => value) }
+      : null;
+  }
+
   protected set(place: number, change: Partial<ExclusionRule>): void {
     this.changed.emit(this.rules().map((rule, index) => (index === place ? { ...rule, ...change } : rule)));
   }
 
   protected setTest(place: number, index: number, column: string, condition: Condition, value: string): void {
-    const kind = this.byName().get(column)?.kind ?? 'categorical';
-    const test = testWith(column, kind, condition, value);
+    const profile = this.byName().get(column);
+    const test = testWith(column, profile?.kind ?? 'categorical', condition, value, this.held(profile));
     if ('message' in test) {
       this.refused.set({ place, index, column, condition, value, message: test.message });
       return;

@@ -1,20 +1,21 @@
 /** Values in one field, parted by commas; one that holds a comma, a quote or outer blanks stands in quotes, as in a CSV file (RFC 4180). */
 
 /**
+ * @param plain what a value without quotes may begin with: anything up to the next comma
  * @example readListed('NA, "a, b", " "') // ['NA', 'a, b', ' ']
  * @returns the values without repetition; null where a quote is not closed, or something stands behind a closed one
  */
-export function readListed(text: string): string[] | null {
+export function readListed(text: string, plain = /^[^,]*/): string[] | null {
   const values = new Set<string>();
   let rest = text;
   for (;;) {
     rest = rest.trimStart();
     const quoted = /^"((?:[^"]|"")*)"\s*(?=,|$)/.exec(rest);
     if (!quoted && rest.startsWith('"')) return null;
-    const plain = /^[^,]*/.exec(rest)?.[0] ?? '';
-    const value = quoted ? quoted[1].replaceAll('""', '"') : plain.trim();
+    const unquoted = plain.exec(rest)?.[0] ?? '';
+    const value = quoted ? quoted[1].replaceAll('""', '"') : unquoted.trim();
     if (quoted || value !== '') values.add(value);
-    rest = rest.slice((quoted?.[0] ?? plain).length);
+    rest = rest.slice((quoted?.[0] ?? unquoted).length);
     if (rest === '') return [...values];
     rest = rest.slice(1);
   }
