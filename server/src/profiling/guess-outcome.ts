@@ -7,13 +7,16 @@ const badWords = /^(bad|b|default|defaulted|d|delinquent|charged[ _-]?off|write[
 const goodWords = /^(good|g|paid|performing|current|non[ _-]?default|ok)$/i;
 const indeterminateWords = /^(indeterminate|i|ind|grey|gray)$/i;
 
+/** "non_default", "not bad": who says what is denied has not said what 1 is. */
+const denied = /(?:^|[^a-z])(?:no|non|not|never|without)[ _-]?(?:bad|default)/i;
+
 /**
  * A first mapping of an outcome's values, by what they say; values that say nothing are left for the person. 1 and 0 follow the heading:
- * in a column called "bad" 1 is bad, in one called "good" it is good.
+ * in a column called "bad" 1 is bad, in one called "good" it is good; in one called "non_default" it is for the person to say.
  */
 export function proposeOutcome(profile: ColumnProfile): DraftOutcome {
   const proposed: DraftOutcome = { good: [], bad: [], indeterminate: [], excluded: [] };
-  const ones = /bad|default|target/i.test(profile.column) ? 'bad' : /^good$/i.test(profile.column) ? 'good' : null;
+  const ones = denied.test(profile.column) ? null : /bad|default|target/i.test(profile.column) ? 'bad' : /^good$/i.test(profile.column) ? 'good' : null;
   for (const { value } of profile.mostFrequent) {
     if (badWords.test(value)) proposed.bad.push(value);
     else if (goodWords.test(value)) proposed.good.push(value);

@@ -26,7 +26,28 @@ function recorded(as: string): Sample {
   return { ...sample, bad: sample['bad'].map((value, row) => (value === 'i' && sample['part'][row] === 'dev' ? as : value)) };
 }
 
+/** Indeterminates weigh twice and more, so that their weight is seen in every figure. */
+const weighted: Sample = { ...sample, weight: sample['bad'].map((value, row) => String((value === 'i' ? 2 : 0.5) + (row % 3) / 4)) };
+
 describe('the fit with indeterminates as good and as bad', () => {
+  it.each([
+    ['as good', '0'],
+    ['as bad', '1'],
+  ] as const)('%s equals the weighted fit of a file that says so', (reading, value) => {
+    const weight = { column: 'weight' };
+    const found = refits(weighted, { weight })?.at.find(({ index }) => index === 1)?.cases.find(({ indeterminates }) => indeterminates === reading);
+    const { result } = replay({
+      specification: specificationOf({ characteristics, weight, fit: { ...fit, lambda: { value: 0.005 } } }),
+      specificationSha256: '0'.repeat(64),
+      dataSha256: '0'.repeat(64),
+      source: sourceOfSample({ ...recorded(value), weight: weighted['weight'] }),
+      version: '1',
+    });
+    expect(found).toMatchObject({ kept: result.kept, converged: true });
+    expect(found?.gini).toBeCloseTo(gini(result.metrics.holdOut?.auc ?? NaN), 9);
+    expect(found?.rankCorrelation).toBeLessThan(1);
+  });
+
   it.each([
     ['as good', '0'],
     ['as bad', '1'],

@@ -1,13 +1,14 @@
 import type { Columns } from './columns';
 import { ValueCounts, type ReplayProblem } from './problems';
-import { BAD, DECLINED, GOOD } from './types';
+import { BAD, DECLINED, GOOD, INDETERMINATE } from './types';
 
 /** Whether a row of this outcome enters a fit or a metric. */
 export const needsWeight = (outcome: number): boolean => outcome === GOOD || outcome === BAD || outcome === DECLINED;
 
 /**
- * Weights of the rows that enter a fit or a metric (goods, bads, declined); other rows get 0. Zero is allowed; missing, negative and
- * unreadable weights are problems, and so are weights that are all zero.
+ * Weights of the rows that enter a fit or a metric (goods, bads, declined), and of indeterminates, which enter where a fit is made again with them as
+ * good or as bad; other rows get 0. Zero is allowed; missing, negative and unreadable weights are problems, and so are weights that are all zero. An
+ * indeterminate whose weight cannot be read gets 0: no figure of a version rests on it.
  */
 export function readWeights(name: string, columns: Columns, outcome: Uint8Array, problems: ReplayProblem[]): Float64Array | null {
   const view = columns.numbers(name);
@@ -16,8 +17,13 @@ export function readWeights(name: string, columns: Columns, outcome: Uint8Array,
   const faults = new ValueCounts();
   let total = 0;
   for (let row = 0; row < weights.length; row++) {
-    if (!needsWeight(outcome[row])) continue;
+    const needed = needsWeight(outcome[row]);
+    if (!needed && outcome[row] !== INDETERMINATE) continue;
     const weight = view.number(row);
+    if (!needed) {
+      if (weight >= 0) weights[row] = weight;
+      continue;
+    }
     if (weight >= 0) {
       weights[row] = weight;
       total += weight;

@@ -39,8 +39,9 @@ export function firstDraft(profiles: readonly ColumnProfile[]): DraftContent {
   const outcome = profiles.find(({ column }) => columns.some((one) => one.column === column && one.role === 'outcome'));
   const decision = profiles.find(({ column }) => columns.some((one) => one.column === column && one.role === 'decision'));
   const partition = profiles.find(({ column }) => columns.some((one) => one.column === column && one.role === 'partition'));
-  const declined =
-    decision?.mostFrequent.map(({ value }) => value).filter((value) => /^(declined?|rejected?|refused|no|0)$/i.test(value)) ?? [];
+  // In a column called "declined" 1 and yes are those who were, in one called "accepted" or "decision" 0 and no.
+  const words = decision && /declin|reject|refus/i.test(decision.column) ? /^(declined?|rejected?|refused|yes|true|1)$/i : /^(declined?|rejected?|refused|no|false|0)$/i;
+  const declined = decision?.mostFrequent.map(({ value }) => value).filter((value) => words.test(value)) ?? [];
   return {
     columns,
     outcome: outcome ? proposeOutcome(outcome) : { good: [], bad: [], indeterminate: [], excluded: [] },

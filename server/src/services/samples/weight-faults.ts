@@ -7,7 +7,7 @@ import { Columns, type NumberView } from '../../replay/columns';
 import { applyExclusions } from '../../replay/exclusions';
 import { assignOutcome } from '../../replay/outcome';
 import type { SourceColumn } from '../../replay/source';
-import { NO_OUTCOME } from '../../replay/types';
+import { INDETERMINATE, NO_OUTCOME } from '../../replay/types';
 import { needsWeight } from '../../replay/weight';
 import { openSample } from '../../storage/columnStore';
 import { type Settled, columnsOfSettled, settledOf } from './settled';
@@ -66,7 +66,8 @@ function rowsWithWeight({ exclusions, outcome, declined }: Settled, columns: Col
   const exclusion = applyExclusions(exclusions, columns, []);
   if (!outcome) return (row) => exclusion[row] === 0;
   const found = assignOutcome({ exclusions, outcome, declined }, columns, exclusion, []).outcome;
-  return (row) => needsWeight(found[row]) || (exclusion[row] === 0 && found[row] === NO_OUTCOME);
+  // Indeterminates too: a fit is made again with them as good and as bad.
+  return (row) => needsWeight(found[row]) || found[row] === INDETERMINATE || (exclusion[row] === 0 && found[row] === NO_OUTCOME);
 }
 
 function countFaults(faulty: readonly number[], view: NumberView): WeightFaults {
