@@ -30,7 +30,9 @@ import { WordsConflictNote } from '../ui/words-conflict';
 import { flagsOf, mostFrequentOf, rangeOf } from '../ui/findings';
 import { SampleSteps } from '../ui/sample-steps';
 import { SaveStateNote } from '../ui/save-state';
+import { StaleNotice } from '../ui/stale-notice';
 import { TakenOverNote, carriedOver, keptOver } from '../ui/taken-over';
+import { asksWhenStale } from './stale-draft';
 import type { DefinedColumn } from '@tallystone/contracts/samples/definition';
 import { labelWords } from '@tallystone/contracts/samples/labels';
 import { withColumns } from '@tallystone/contracts/samples/role-holders';
@@ -61,10 +63,14 @@ interface Row {
     ProblemList,
     SampleSteps,
     SaveStateNote,
+    StaleNotice,
     TakenOverNote,
     Tombstone,
   ],
   template: `
+    @if (draft.saveState() === 'stale') {
+      <ts-stale-notice [theirs]="draft.theirs()" (settled)="settle()" />
+    }
     <div class="ts-stack">
       <ts-sample-steps
         [modelId]="modelId()"
@@ -74,9 +80,13 @@ interface Row {
       />
       <ts-page-header title="Columns" [finding]="finding()">
         @if (!unread()) {
-          @if (draft.saveState() !== 'stale') {
-            <ts-save-state [state]="draft.saveState()" [savedAt]="draft.savedAt()" [savedBy]="draft.savedBy()" />
-          }
+          <ts-save-state
+            [state]="draft.saveState()"
+            [savedAt]="draft.savedAt()"
+            [savedBy]="draft.savedBy()"
+            [aside]="draft.setAside()?.whose ?? null"
+            (broughtBack)="draft.bringBack()"
+          />
           <a matButton="filled" [routerLink]="['/models', modelId(), 'sample', sampleId(), 'definition']"
             >Outcome and partition</a
           >
@@ -110,9 +120,6 @@ interface Row {
       @for (note of takenOver(); track $index) {
         <ts-taken-over [note]="note" />
       }
-      @if (draft.saveState() === 'stale') {
-        <ts-save-state [state]="draft.saveState()" (theirs)="draft.reload()" (mine)="draft.keepMine()" />
-      }
       @if (rows().length > 0) {
         <div class="ts-split">
           <ts-table
@@ -133,7 +140,7 @@ interface Row {
             </ng-template>
           </ts-table>
           @if (chosen(); as row) {
-            <div class="chosen" #part>
+            <div class="chosen" [class.below-notice]="draft.saveState() === 'stale'" #part>
               <ts-column-editor
                 [profile]="row.profile"
                 [column]="row.defined"
@@ -190,6 +197,11 @@ interface Row {
       scroll-margin-top: 16px;
       padding: 2px;
     }
+    // The notice of a stale draft stays in sight above it.
+    .chosen.below-notice {
+      top: 112px;
+      max-height: calc(100vh - 128px);
+    }
     @media (max-width: 899px) {
       .chosen {
         position: static;
@@ -218,6 +230,7 @@ interface Row {
 export class ColumnsPage {
   private readonly router = inject(Router);
   protected readonly draft = inject(DraftStore);
+  protected readonly settle = asksWhenStale(this.draft);
   protected readonly words = inject(DictionaryStore);
 
   readonly modelId = input.required<string>();
@@ -339,7 +352,8 @@ export class ColumnsPage {
   private async afterImport(taken: boolean): Promise<void> {
     if (!taken) return;
     this.imported.set(true);
-    await this.draft.reload();
+    // What could not be saved here is still to be decided on, now beside what the file changed.
+    await (this.draft.saveState() === 'stale' ? this.draft.compare() : this.draft.reload());
   }
 
   /** The reading choices open with these tokens entered: there they are seen on the first rows, and confirmed. */

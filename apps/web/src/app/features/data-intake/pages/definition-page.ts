@@ -46,7 +46,9 @@ import { runTitles } from '../ui/run-titles';
 import { SampleSteps } from '../ui/sample-steps';
 import { SaveStateNote } from '../ui/save-state';
 import { SensitivityTable } from '../ui/sensitivity-table';
+import { StaleNotice } from '../ui/stale-notice';
 import { WaterfallFigure } from '../ui/waterfall-figure';
+import { asksWhenStale } from './stale-draft';
 
 /** What the sample means: outcome, exclusions, partition, and the waterfall that they give; then confirmed for good. */
 @Component({
@@ -71,6 +73,7 @@ import { WaterfallFigure } from '../ui/waterfall-figure';
     SampleSteps,
     SaveStateNote,
     SensitivityTable,
+    StaleNotice,
     Tombstone,
     WaterfallFigure,
   ],
@@ -90,6 +93,7 @@ export class DefinitionPage {
   private readonly asking = inject(Ask);
   private readonly injector = inject(Injector);
   protected readonly draft = inject(DraftStore);
+  protected readonly settle = asksWhenStale(this.draft);
 
   readonly modelId = input.required<string>();
   readonly sampleId = input.required<string>();
