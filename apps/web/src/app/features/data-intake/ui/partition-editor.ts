@@ -1,4 +1,4 @@
-import { ChangeDetectionStrategy, Component, computed, input, output } from '@angular/core';
+import { ChangeDetectionStrategy, Component, computed, input, linkedSignal, output } from '@angular/core';
 import { MatCheckboxModule } from '@angular/material/checkbox';
 import { MatFormFieldModule } from '@angular/material/form-field';
 import { MatInputModule } from '@angular/material/input';
@@ -42,8 +42,9 @@ const parts: readonly Meaning[] = [
             min="0"
             max="90"
             step="1"
-            [value]="percent()"
+            [value]="shareTyped() ?? percent()"
             [disabled]="!editable()"
+            [attr.aria-invalid]="shareTyped() === null ? null : true"
             (change)="setShare($event)"
           />
         </mat-form-field>
@@ -55,12 +56,23 @@ const parts: readonly Meaning[] = [
             min="0"
             max="4294967295"
             step="1"
-            [value]="seeded.seed"
+            [value]="seedTyped() ?? seeded.seed"
             [disabled]="!editable()"
+            [attr.aria-invalid]="seedTyped() === null ? null : true"
             (change)="setSeed($event)"
           />
         </mat-form-field>
       </div>
+      @if (shareTyped() !== null) {
+        <p class="refused" role="alert">
+          Hold-out takes a per cent from 0 to 90, and 0 where there is none. Until then it stays {{ percent() }} per cent.
+        </p>
+      }
+      @if (seedTyped() !== null) {
+        <p class="refused" role="alert">
+          A seed is a whole number from 0 to {{ largest }}. Until then it stays {{ seeded.seed }}.
+        </p>
+      }
       <mat-checkbox
         [checked]="seeded.outOfTime !== null"
         [disabled]="!editable() || date() === null"
@@ -116,6 +128,9 @@ const parts: readonly Meaning[] = [
       grid-template-columns: repeat(2, minmax(0, 220px));
       gap: 16px;
     }
+    .refused {
+      color: var(--mat-sys-error);
+    }
     @media (max-width: 480px) {
       .fields {
         grid-template-columns: minmax(0, 1fr);
@@ -136,7 +151,20 @@ export class PartitionEditor {
     const partition = this.partition();
     return partition.by === 'seed' ? partition : null;
   });
-  protected readonly percent = computed(() => Math.round((this.seeded()?.holdOutShare ?? 0) * 1000) / 10);
+  private readonly heldOut = computed(() => this.seeded()?.holdOutShare);
+  private readonly drawnBy = computed(() => this.seeded()?.seed);
+  // Without the digits that a hundredth adds, and with all that were typed.
+  protected readonly percent = computed(() => Number(((this.heldOut() ?? 0) * 100).toPrecision(12)));
+  protected readonly largest = 2 ** 32 - 1;
+  /** What was typed and could not be taken: it stays in its field with the reason, until the partition has another value there. */
+  protected readonly shareTyped = linkedSignal<number | undefined, string | null>({
+    source: this.heldOut,
+    computation: () => null,
+  });
+  protected readonly seedTyped = linkedSignal<number | undefined, string | null>({
+    source: this.drawnBy,
+    computation: () => null,
+  });
   protected readonly values = computed<MappedValue[]>(() => {
     const partition = this.partition();
     if (partition.by !== 'column') return [];
@@ -165,14 +193,20 @@ export class PartitionEditor {
 
   protected setShare(event: Event): void {
     const seeded = this.seeded();
-    const share = Number((event.target as HTMLInputElement).value) / 100;
-    if (seeded && share >= 0 && share <= 0.9) this.changed.emit({ ...seeded, holdOutShare: share });
+    const typed = (event.target as HTMLInputElement).value;
+    const percent = numberOf(typed);
+    const taken = percent !== null && percent >= 0 && percent <= 90;
+    this.shareTyped.set(taken ? null : typed);
+    if (seeded && taken) this.changed.emit({ ...seeded, holdOutShare: percent / 100 });
   }
 
   protected setSeed(event: Event): void {
     const seeded = this.seeded();
-    const seed = Number((event.target as HTMLInputElement).value);
-    if (seeded && Number.isInteger(seed) && seed >= 0 && seed < 2 ** 32) this.changed.emit({ ...seeded, seed });
+    const typed = (event.target as HTMLInputElement).value;
+    const seed = numberOf(typed);
+    const taken = seed !== null && Number.isInteger(seed) && seed >= 0 && seed <= this.largest;
+    this.seedTyped.set(taken ? null : typed);
+    if (seeded && taken) this.changed.emit({ ...seeded, seed });
   }
 
   protected setOutOfTime(on: boolean): void {
@@ -203,4 +237,9 @@ export class PartitionEditor {
     if (meaning !== null) next[meaning as 'development' | 'holdOut' | 'outOfTime'].push(value);
     this.changed.emit(next);
   }
+}
+
+/** Null for an empty field, which is not 0; what is no number the browser gives as empty. */
+function numberOf(typed: string): number | null {
+  return typed.trim() === '' ? null : Number(typed);
 }
