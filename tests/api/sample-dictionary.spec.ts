@@ -152,6 +152,40 @@ describe('the data dictionary of a sample', () => {
     }
   });
 
+  it('takes a file whose fields semicolons or tabs part', async () => {
+    for (const [text, label] of [
+      ['\ufeffcolumn;label;unit\r\nage;"Age; when applying";years, full\r\n', 'Age; when applying'],
+      ['"column"\t"label"\t"unit"\nage\tAge\tyears, full\n', 'Age'],
+    ]) {
+      const { status } = await take(text);
+      expect(status, text).toBe(200);
+      const age = (await read()).dictionary.entries.find(({ column }) => column === 'age');
+      expect([age?.label, age?.unit]).toEqual([label, 'years, full']);
+    }
+    const { status, body } = await take('column|label\nage|Age\n');
+    expect([status, body.problems]).toEqual([
+      422,
+      [
+        {
+          code: 'no-such-heading',
+          message: expect.stringMatching(/^Line 1: "column\|label" is no heading .*parted by commas, semicolons or tabs\.$/) as string,
+          where: { line: 1 },
+        },
+      ],
+    ]);
+  });
+
+  it('refuses a file in which characters were lost, with each of its lines', async () => {
+    const before = { read: await read(), draft: await draft() };
+    const { status, body } = await take('column,label\nage,\ufffdge\nhome,Home\nregion,"R\ufffdgion"\n');
+    expect(status).toBe(422);
+    expect(body.problems.map(({ code, where }: { code: string; where: object }) => [code, where])).toEqual([
+      ['lost-characters', { line: 2 }],
+      ['lost-characters', { line: 4 }],
+    ]);
+    expect({ read: await read(), draft: await draft() }).toEqual(before);
+  });
+
   it('is carried over to a later sample for columns of the same name and kind, and says what was not', async () => {
     const csv = ['applied_on,age,utilisation,home,region,postcode,bad'];
     for (let row = 0; row < 300; row++)

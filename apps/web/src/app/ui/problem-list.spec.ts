@@ -45,4 +45,13 @@ describe('ProblemList', () => {
     const item = (fixture.nativeElement as HTMLElement).querySelector('li');
     expect(item?.textContent?.replace(/\s+/g, ' ').trim()).toBe(`line 4 ${message}`);
   });
+
+  it('says a single problem once', async () => {
+    const fixture = TestBed.createComponent(ProblemList);
+    const message = 'Line 1: "colour" is no heading.';
+    const item = { code: 'no-such-heading', message, where: { line: 1 } };
+    fixture.componentRef.setInput('error', new Problem(422, 'invalid', 'Not valid', message, [item]));
+    await fixture.whenStable();
+    expect((fixture.nativeElement as HTMLElement).textContent?.split(message)).toHaveLength(2);
+  });
 });

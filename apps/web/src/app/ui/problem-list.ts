@@ -15,8 +15,8 @@ const saidAlready: readonly string[] = ['lines', 'values', 'count'];
     @if (problem(); as problem) {
       <div class="problem" role="alert">
         <p class="title">{{ problem.title }}</p>
-        @if (problem.detail && problem.detail !== problem.title) {
-          <p>{{ problem.detail }}</p>
+        @if (detail(); as detail) {
+          <p>{{ detail }}</p>
         }
         @if (problem.problems.length > 0) {
           <ul>
@@ -84,6 +84,11 @@ export class ProblemList {
   readonly limit = input(50);
 
   protected readonly problem = computed<Problem | null>(() => (this.error() ? asProblem(this.error()) : null));
+  /** Of an input with one problem the server says it in the detail too. */
+  protected readonly detail = computed(() => {
+    const { detail, title, problems } = this.problem() ?? { detail: '', title: '', problems: [] };
+    return detail === title || problems.some(({ message }) => message === detail) ? '' : detail;
+  });
   protected readonly shown = computed(() => this.problem()?.problems.slice(0, this.limit()) ?? []);
 
   /** { line: 812, column: 'income' } reads "line 812, column income". How many lines or values, and which, the message says itself. */

@@ -58,6 +58,15 @@ export function readDictionaryCsv(
   const problems: ProblemItem[] = [];
   const say = (code: string, message: string, line: number, heading?: Heading): void =>
     void problems.push({ code, message: `Line ${line}: ${message}`, where: heading ? { line, column: heading } : { line } });
+  text.split(/\r\n|\n|\r/).forEach((line, place) => {
+    if (line.includes('\ufffd'))
+      say(
+        'lost-characters',
+        'it holds the sign for a lost character (U+FFFD). Save the file again in UTF-8 from where it comes from.',
+        place + 1,
+      );
+  });
+  if (problems.length > 0) return { read: null, problems };
   const { headings, lines } = linesOf(text, say);
   const has = (heading: Heading): boolean => headings.includes(heading);
   if (problems.length === 0 && !has('column')) say('no-column-heading', 'there is no heading "column".', 1);
@@ -99,12 +108,29 @@ export function readDictionaryCsv(
   return problems.length > 0 ? { read: null, problems } : { read: { columns: nextColumns, entries: nextEntries }, problems };
 }
 
+/** What parts fields: that under which the first line has the most headings; a comma, as an export has, where none has more. */
+function delimiterOf(text: string): string {
+  const [first] = text.replace(/^\ufeff/, '').split(/\r\n|\n|\r/, 1);
+  const known = (delimiter: string): number => {
+    const headings = first.split(delimiter).map((heading) =>
+      heading
+        .trim()
+        .replace(/^"(.*)"$/, '$1')
+        .trim()
+        .toLowerCase(),
+    );
+    return headings.filter((heading) => (dictionaryHeadings as readonly string[]).includes(heading)).length;
+  };
+  return [',', ';', '\t'].reduce((best, delimiter) => (known(delimiter) > known(best) ? delimiter : best));
+}
+
 type Say = (code: string, message: string, line: number, heading?: Heading) => void;
 
 function linesOf(text: string, say: Say): { headings: Heading[]; lines: Line[] } {
   let records: { info: { lines: number }; record: string[] }[];
+  const delimiter = delimiterOf(text);
   try {
-    records = parse(text, { bom: true, info: true, relax_column_count: true, skip_empty_lines: true, trim: false }) as unknown as typeof records;
+    records = parse(text, { bom: true, delimiter, info: true, relax_column_count: true, skip_empty_lines: true, trim: false }) as unknown as typeof records;
   } catch (error) {
     if (!(error instanceof CsvError)) throw error;
     say('not-csv', `this is no CSV (${error.message}).`, Number(error.lines ?? 1));
@@ -114,7 +140,11 @@ function linesOf(text: string, say: Say): { headings: Heading[]; lines: Line[] }
   const headings = (first?.record ?? []).map((heading) => heading.trim().toLowerCase());
   headings.forEach((heading, place) => {
     if (!(dictionaryHeadings as readonly string[]).includes(heading))
-      say('no-such-heading', `"${heading}" is no heading of a dictionary: ${dictionaryHeadings.join(', ')}.`, 1);
+      say(
+        'no-such-heading',
+        `"${heading}" is no heading of a dictionary: ${dictionaryHeadings.join(', ')}, parted by commas, semicolons or tabs.`,
+        1,
+      );
     else if (headings.indexOf(heading) !== place) say('heading-twice', `the heading "${heading}" stands there twice.`, 1);
   });
   let before = first?.info.lines ?? 0;

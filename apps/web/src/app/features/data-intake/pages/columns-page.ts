@@ -12,7 +12,9 @@ import {
 } from '@angular/core';
 import { MatButtonModule } from '@angular/material/button';
 import { Router, RouterLink } from '@angular/router';
+import { Problem } from '../../../core/http/problem';
 import { warnBeforeUnload } from '../../../core/unsaved-changes';
+import { Ask } from '../../../ui/ask';
 import { type Column } from '../../../ui/column';
 import { CellTemplate, DenseTable } from '../../../ui/dense-table';
 import { PageHeader } from '../../../ui/page-header';
@@ -24,6 +26,7 @@ import { DictionaryStore } from '../data/dictionary-store';
 import { DraftStore } from '../data/draft-store';
 import { type ColumnProfile, columnsOf, oneSample, unreadOf } from '../data/samples';
 import { ColumnEditor } from '../ui/column-editor';
+import { dictionaryText } from '../ui/dictionary-text';
 import { DictionaryEditor } from '../ui/dictionary-editor';
 import { NotReadYet } from '../ui/not-read-yet';
 import { WordsConflictNote } from '../ui/words-conflict';
@@ -103,6 +106,7 @@ interface Row {
       <ts-problems [error]="sample.error() ?? columns.error()" />
       <ts-problems [error]="draft.error()" />
       <ts-problems [error]="words.error()" next="Mend the file and import it again: nothing of it was taken." [limit]="60" />
+      <ts-problems [error]="notText()" />
       @for (conflict of words.conflicts(); track conflict.mine.column) {
         <ts-words-conflict
           [conflict]="conflict"
@@ -229,6 +233,7 @@ interface Row {
 })
 export class ColumnsPage {
   private readonly router = inject(Router);
+  private readonly asking = inject(Ask);
   protected readonly draft = inject(DraftStore);
   protected readonly settle = asksWhenStale(this.draft);
   protected readonly words = inject(DictionaryStore);
@@ -239,6 +244,8 @@ export class ColumnsPage {
 
   private readonly editor = viewChild<ElementRef<HTMLElement>>('part');
   protected readonly imported = signal(false);
+  /** A file that is no text as it stands: nothing of it was sent. */
+  protected readonly notText = signal<Problem | null>(null);
   protected readonly file = computed(() => `/api/models/${this.modelId()}/samples/${this.sampleId()}/dictionary/file`);
   protected readonly sample = oneSample(
     () => this.modelId(),
@@ -338,10 +345,35 @@ export class ColumnsPage {
     const file = picker.files?.[0];
     if (!file) return;
     this.imported.set(false);
-    await this.draft.flush();
-    const taken = await this.words.importFile(await file.text());
+    this.notText.set(null);
+    const read = dictionaryText(new Uint8Array(await file.arrayBuffer()));
     picker.value = '';
-    await this.afterImport(taken);
+    if ('refused' in read) {
+      this.notText.set(new Problem(422, 'not-text', read.refused, ''));
+      return;
+    }
+    if ('line' in read && !(await this.mayRead1252(read))) return;
+    await this.draft.flush();
+    await this.afterImport(await this.words.importFile('text' in read ? read.text : read.asWindows1252));
+  }
+
+  /** Which signs were meant only a person can say: the line is shown as it would read. */
+  private async mayRead1252({ line, words }: { readonly line: number; readonly words: string }): Promise<boolean> {
+    const answer = await this.asking.for({
+      title: `Line ${line} is not UTF-8; read as Windows-1252?`,
+      text: `It would read: ${words.slice(0, 300)}`,
+      accept: 'Read as Windows-1252',
+    });
+    if (answer) return true;
+    this.notText.set(
+      new Problem(
+        422,
+        'not-text',
+        `Line ${line} is not UTF-8: nothing was imported.`,
+        'Save the file as CSV in UTF-8 and import it again.',
+      ),
+    );
+    return false;
   }
 
   protected async importAgain(): Promise<void> {
