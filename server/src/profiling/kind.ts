@@ -1,5 +1,6 @@
 import type { ColumnFlag } from '@tallystone/contracts/samples/columns';
 import type { ColumnKind } from '@tallystone/contracts/samples/reading';
+import { thin } from '../reading/thin';
 import { looksLikeAmount, looksLikeDateTime } from './quantity';
 import { type NumberFault, type NumberFormat, type NumberReader, ThousandsQuestion, isNumberSomehow, judgeFormat, numberReader } from '../reading/index';
 
@@ -174,5 +175,4 @@ function mayBeMissing(notNumbers: readonly Counted[]): string[] {
   return tokens.sort(byFrequency).slice(0, 20).map(({ text }) => text);
 }
 
-/** Whole numbers with a narrow no-break space between thousands. */
-export const thin = (value: number): string => String(value).replace(/\B(?=(\d{3})+(?!\d))/g, '\u202f');
+export { thin };

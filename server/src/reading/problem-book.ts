@@ -1,17 +1,29 @@
 import type { DateOrder, Encoding } from '@tallystone/contracts/specification/types';
 import { orderWords } from './dates';
 import { ENCODING_NAMES } from './encodings';
+import { thin } from './thin';
 import type { Doubt, ReadingProblem, ReadingProblemCode } from './types';
 
 const MOST_LINES = 20;
 /** Problems of single cells are listed up to here, and counted beyond. */
 const MOST_CELLS = 20;
+/** Columns that are named with their count of cells that are not listed. */
+const MOST_COLUMNS = 5;
 
 interface Lines {
   lines: number[];
   count: number;
   detail: string;
   record: number;
+}
+
+/** Faults of one kind in single cells. */
+interface Cells {
+  /** "are no dates that exist, …": what is true of several. */
+  readonly several: string;
+  count: number;
+  /** Those beyond, by the name of their column. */
+  readonly beyond: Map<string, number>;
 }
 
 /** Collects what is wrong with a file while it is read: one problem per kind for whole lines, one per cell otherwise. */
@@ -23,7 +35,7 @@ export class ProblemBook {
 
   private readonly list: ReadingProblem[] = [];
   private readonly byLine = new Map<ReadingProblemCode, Lines>();
-  private readonly cells = new Map<ReadingProblemCode, number>();
+  private readonly cells = new Map<ReadingProblemCode, Cells>();
   private encoding: Encoding = 'utf-8';
   private lastNotInEncoding = 0;
   private lastLost = 0;
@@ -75,20 +87,18 @@ export class ProblemBook {
   }
 
   cellTooLarge(line: number, record: number, position: number, column: string | undefined, most: number): void {
-    this.cellFault('cell-too-large', `holds more than ${most.toLocaleString('en-GB')} characters`, {
-      line,
-      record,
-      position,
-      column,
-    });
+    const what = `more than ${most.toLocaleString('en-GB')} characters`;
+    this.cellFault('cell-too-large', `holds ${what}`, `hold ${what}`, { line, record, position, column });
   }
 
   noSuchDate(line: number, record: number, position: number, column: string, order: DateOrder): void {
-    this.cellFault('no-such-date', `is no date that exists, read ${orderWords[order]}`, { line, record, position, column });
+    const read = `read ${orderWords[order]}`;
+    const place = { line, record, position, column };
+    this.cellFault('no-such-date', `is no date that exists, ${read}`, `are no dates that exist, ${read}`, place);
   }
 
   nul(line: number, record: number, position: number, column: string | undefined): void {
-    this.cellFault('nul-byte', 'contains a NUL byte', { line, record, position, column });
+    this.cellFault('nul-byte', 'contains a NUL byte', 'contain a NUL byte', { line, record, position, column });
   }
 
   problems(): ReadingProblem[] {
@@ -97,23 +107,25 @@ export class ProblemBook {
       const where = { line: lines[0], lines, count, ...(record > 0 ? { record } : {}) };
       problems.push({ code, message: this.say(code, lines, count, detail), where });
     }
-    for (const [code, count] of this.cells) {
-      if (count > MOST_CELLS) {
-        problems.push({ code, message: `The same is true of ${count - MOST_CELLS} more cells.`, where: { count } });
-      }
+    problems.sort(byLine);
+    for (const [code, cells] of this.cells) {
+      if (cells.count <= MOST_CELLS) continue;
+      // After those of its kind that are listed: before them nobody could tell what is true of so many more.
+      const after = problems.findLastIndex((problem) => problem.code === code) + 1;
+      problems.splice(after, 0, { code, message: moreCells(cells), where: { count: cells.count } });
     }
     if (this.tooManyRows !== null) {
-      problems.push({
+      problems.unshift({
         code: 'too-many-rows',
-        message: `The file has ${this.rowsFound.toLocaleString('en-GB')} rows; at most ${this.tooManyRows.toLocaleString('en-GB')} can be brought in.`,
+        message: `The file has ${thin(this.rowsFound)} rows; at most ${thin(this.tooManyRows)} can be brought in.`,
         where: { count: this.rowsFound },
       });
     }
-    return problems.sort((a, b) => (a.where.line ?? 0) - (b.where.line ?? 0));
+    return problems;
   }
 
   private say(code: ReadingProblemCode, lines: number[], count: number, detail: string): string {
-    const others = count > 1 ? ` ${count} lines in all: ${lines.join(', ')}${count > lines.length ? ', …' : ''}.` : '';
+    const others = count > 1 ? ` ${thin(count)} lines in all: ${lines.join(', ')}${count > lines.length ? ', …' : '.'}` : '';
     if (code === 'ragged') return `${detail}${others}`;
     if (code === 'stray-quote')
       return `Line ${lines[0]} has text after a closing quote; a quote inside a quoted field is doubled.${others}`;
@@ -134,22 +146,40 @@ export class ProblemBook {
     }
   }
 
+  /** @param several the same of several cells */
   private cellFault(
     code: ReadingProblemCode,
     what: string,
+    several: string,
     place: { line: number; record: number; position: number; column: string | undefined },
   ): void {
-    const count = (this.cells.get(code) ?? 0) + 1;
-    this.cells.set(code, count);
+    const cells = this.cells.get(code) ?? { several, count: 0, beyond: new Map<string, number>() };
+    cells.count++;
+    this.cells.set(code, cells);
     this.any = true;
     const { column, ...where } = place;
     const name = column === undefined ? `column ${place.position}` : `column ${place.position} ("${column}")`;
     this.onDoubt?.({ code, line: place.line, record: place.record, what: `${name} ${what}` });
-    if (count > MOST_CELLS) return;
+    if (cells.count > MOST_CELLS) {
+      cells.beyond.set(name, (cells.beyond.get(name) ?? 0) + 1);
+      return;
+    }
     this.add({
       code,
       message: `The cell in line ${place.line}, ${name}, ${what}.`,
       where: column === undefined ? where : { ...where, column },
     });
   }
+}
+
+const byLine = (a: ReadingProblem, b: ReadingProblem): number => (a.where.line ?? 0) - (b.where.line ?? 0);
+
+/** "1 678 more cells are no dates that exist, read with the day first: 1 000 in column 2 ("opened"), 678 in column 3 ("closed")." */
+function moreCells({ several, count, beyond }: Cells): string {
+  const rest = count - MOST_CELLS;
+  const more = rest === 1 ? '1 more cell, as those above' : `${thin(rest)} more cells ${several}`;
+  const columns = [...beyond].sort(([, a], [, b]) => b - a);
+  const named = columns.slice(0, MOST_COLUMNS).map(([name, cells]) => `${thin(cells)} in ${name}`);
+  const others = columns.length - named.length;
+  return `${more}: ${named.join(', ')}${others > 0 ? ` and more in ${thin(others)} other columns` : ''}.`;
 }

@@ -182,6 +182,35 @@ describe('reading a raw file', () => {
     expect(wrong.columns).toEqual([]);
   });
 
+  it('says after the cells that are listed what is true of how many more, with their columns', async () => {
+    const stated = { dateOrder: 'day-month-year' } as const;
+    const dates = Array.from({ length: 2000 }, (_, row) => `31/02/2024,${row < 1200 ? '30/02/2024' : '1/2/2024'}`);
+    const file = await read(`on,"until, then"\n${dates.join('\n')}\n1\n`, stated);
+    expect(file.problems).toHaveLength(22);
+    expect(file.problems.slice(0, 20).map(({ where }) => where.line)).toEqual(
+      Array.from({ length: 20 }, (_, place) => 2 + (place >> 1)),
+    );
+    expect(file.problems[20]).toEqual({
+      code: 'no-such-date',
+      message:
+        '3\u202f180 more cells are no dates that exist, read with the day first: 1\u202f990 in column 1 ("on"), 1\u202f190 in column 2 ("until, then").',
+      where: { count: 3200 },
+    });
+    expect(file.problems[21]).toMatchObject({ code: 'ragged', where: { line: 2002 } });
+    // Those of another kind on earlier lines stay before, and those of the kind stay together with what is said of them.
+    const mixed = await read(`a,b\n${`1\n`.repeat(3)}${'x\0,2\n'.repeat(21)}`);
+    expect(codesOf(mixed)).toEqual(['ragged', ...Array.from({ length: 21 }, () => 'nul-byte')]);
+    expect(mixed.problems.at(-1)?.message).toBe('1 more cell, as those above: 1 in column 1 ("a").');
+  });
+
+  it('writes counts of lines as counts are written, and a list that goes on without a stop', async () => {
+    const file = await read(`a,b\n${'1\n'.repeat(6000)}`);
+    expect(file.problems[0].message).toBe(
+      `Line 2 has 1 field where the header has 2. 6\u202f000 lines in all: ${Array.from({ length: 20 }, (_, place) => place + 2).join(', ')}, …`,
+    );
+    expect((await read('a,b\n1\n2\n')).problems[0].message).toMatch(/ 2 lines in all: 2, 3\.$/);
+  });
+
   it('recognises files that are no text', async () => {
     expect(codesOf(await read(Buffer.from('PK\u0003\u0004 [Content_Types].xml')))).toEqual(['spreadsheet']);
     expect(codesOf(await read(Buffer.from('PK\u0003\u0004 sample.csv')))).toEqual(['archive']);
