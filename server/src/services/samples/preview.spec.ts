@@ -174,3 +174,38 @@ describe('a preview of the beginning of a file', () => {
     }
   }); // prettier-ignore
 });
+
+describe('the rows that a preview judges by', () => {
+  const width = 200;
+  const header = Array.from({ length: width }, (_, place) => `c${place}`).join(',');
+  /** Lines of more than a mebibyte over 2,000: the part that is looked at ends within one of them. */
+  const wide = (rows: number, cell: (row: number, column: number) => string): string =>
+    Array.from({ length: rows }, (_, row) => Array.from({ length: width }, (_, column) => cell(row, column)).join(',')).join(
+      '\n',
+    );
+
+  it.each(['utf-8', 'utf-16le', 'windows-1252'] as const)('are whole, where lines are long, in %s', async (encoding) => {
+    for (const digits of [4, 7]) {
+      const text = `${header}\n${wide(1600, (row, column) => ((row * 7 + column) / 1000).toFixed(digits))}\n`;
+      const bytes = Buffer.from(text, encoding === 'windows-1252' ? 'latin1' : encoding === 'utf-8' ? 'utf8' : 'utf16le');
+      const looked = 2 * 1024 * 1024;
+      const shown = await previewOf(bytes.subarray(0, looked), bytes.length <= looked, { encoding });
+      expect(shown.warnings).toEqual([]);
+      expect(shown.columns.map(({ kind }) => kind)).toEqual(Array.from({ length: width }, () => 'numeric'));
+      const { reason } = shown.reasons.find(({ choice }) => choice === 'delimiter')!;
+      const [, alike, of] = /, (\S+) of the first (\S+) rows have/.exec(reason)!;
+      expect(alike).toBe(of);
+    }
+  });
+
+  it('are those before a quoted line break at which the part ends', async () => {
+    const cell = (row: number, column: number): string =>
+      column === 100 ? `"note\nof ${row}"` : (row + column / 1000).toFixed(4);
+    for (const pad of [3, 400, 800]) {
+      const bytes = Buffer.from(`${header}\n${`${'0.'.padEnd(pad, '1')}${',2'.repeat(width - 1)}\n`}${wide(1600, cell)}\n`);
+      const shown = await previewOf(bytes.subarray(0, 2 * 1024 * 1024), false, {});
+      expect([shown.header.length, shown.rows.length]).toEqual([width, 20]);
+      expect(shown.warnings).toEqual([]);
+    }
+  });
+});

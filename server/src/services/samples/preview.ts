@@ -15,6 +15,8 @@ import { type Counted, judgeKind, thin } from '../../profiling/kind';
 
 /** How much of a file is looked at before a person decides: its first chunk, and of that at most this many bytes. */
 const lookedBytes = 2 * 1024 * 1024;
+/** Of that, bytes from which rows are shown and the kinds of columns judged. */
+const shownBytes = 1024 * 1024;
 const shownRows = 20;
 /** Rows from which the kinds of columns are judged. */
 const judgedRows = 2000;
@@ -159,9 +161,10 @@ function looseTable(text: string, choices: Omit<ReadingChoices, 'missing'>): Tab
 const isCsvError = (error: unknown): error is CsvError =>
   error instanceof Error && 'code' in error && String(error.code).startsWith('CSV_');
 
-/** For showing only: what is read is decoded strictly by the reader. */
+/** For showing only: what is read is decoded strictly by the reader. Cut after a whole line, so that no cell is judged by what is left of it. */
 function textOf(bytes: Buffer, encoding: ReadingChoices['encoding']): string {
-  const part = bytes.subarray(0, 1024 * 1024);
+  const first = bytes.subarray(0, shownBytes);
+  const part = first.length < bytes.length ? first.subarray(0, wholeLines(first, encoding)) : first;
   // TextDecoder of some releases of Node.js takes Windows-1252 for Latin-1.
   if (encoding === 'windows-1252') return decoderOf(encoding).decode(part, 1, () => undefined);
   return new TextDecoder(encoding).decode(part);
