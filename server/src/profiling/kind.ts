@@ -141,6 +141,15 @@ function doubtful(values: readonly Counted[], total: number, numbers: number, re
         ? ''
         : ` and “${thousands === '\u00a0' || thousands === '\u202f' ? 'narrow blank' : thousands}” between thousands`;
     const example = values.find(({ text }) => Number.isNaN(reader.read(text)))?.text ?? '';
+    const other = judged.ambiguous;
+    if (other !== null) {
+      // Both at once: whoever follows one advice must not learn afterwards that it was a guess.
+      const [one, two] = [judged.format, other].map((format) => thin(numberReader(format).read(example)));
+      const finding =
+        `Numbers such as “${example}”: ${one} where “${decimal}” is the decimal sign, and ${two} where it parts thousands. Each value with “${decimal}” has exactly three digits after it, so that the file does not say which. ` +
+        `Change the reading choices to use them as numbers: “${decimal}” as decimal sign, or “${decimal}” as thousands sign with “${other.decimal}” as decimal sign.`;
+      return { against: finding, flags: [{ code: 'numbers-as-text', weight: 'look', finding }] };
+    }
     const finding = `Numbers written with “${decimal}” as decimal sign${sign} (${example}): change the reading choices to use them as numbers.`;
     return { against: finding, flags: [{ code: 'numbers-as-text', weight: 'look', finding }] };
   }

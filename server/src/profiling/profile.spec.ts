@@ -76,6 +76,19 @@ describe('what the quality table says of a column', () => {
     ).toEqual([]);
   });
 
+  it('names both readings at once where the sign may part thousands', () => {
+    const texts = many(60, (k) => `${(k % 9) + 1},${100 + k * 3}`);
+    const finding = profile(['7,582', ...texts]).flags.find(({ code }) => code === 'numbers-as-text')?.finding;
+    expect(finding).toContain('Numbers such as “7,582”: 7.582 where “,” is the decimal sign, and 7\u202f582 where it parts thousands.');
+    expect(finding).toContain('“,” as decimal sign, or “,” as thousands sign with “.” as decimal sign.');
+    // A value that has other than three digits after the sign, or a large one without it, leaves one reading.
+    for (const other of ['7,58', '12345'])
+      expect(profile([...texts, other]).flags.find(({ code }) => code === 'numbers-as-text')?.finding).toContain(
+        'Numbers written with “,” as decimal sign (1,100): change the reading choices',
+      );
+    expect(codes(texts, 'c', { ...choices, thousands: ',' })).toEqual([]);
+  });
+
   it('sets numbers of mixed spelling to not used, with examples of each', () => {
     const found = profile([...many(20, (k) => `${k}.5`), ...many(20, (k) => `${k},5`), '', 'NA']);
     expect(found).toMatchObject({ kind: 'categorical', suggestedRole: 'not used' });
