@@ -161,6 +161,36 @@ describe('dates written day first', () => {
   }, 60_000);
 });
 
+describe('reference numbers in the form of dates, beside dates', () => {
+  // Two of them are days, in one order or in both: read as dates they would be other texts.
+  const codes = ['18-58-9762', '47-10-7838', '10-07-1938', '25-12-2001', '88-31-4410', '62-77-1190'];
+  const place = iso.slice(0, iso.indexOf('\n')).split(',').indexOf('branch_code');
+  const codeOf = (line: string, row: number): string => codes[(line.endsWith(',1') ? row % 2 : row) % codes.length];
+  const withCodes = dayFirst
+    .split('\n')
+    .map((line, row) => (row === 0 || line === '' ? line : line.split(',').with(place, codeOf(line, row)).join(',')))
+    .join('\n');
+
+  it('stay as they are in both readers, in the definition, and in the version when it replays', async () => {
+    const { path, run } = await modeller.sample(modelId, withCodes);
+    expect(run).toMatchObject({ state: 'succeeded' });
+    const plain = await columnsOf(path);
+    expect(await columnsOf((await modeller.sample(modelId, withCodes.replaceAll('\n', '\r'))).path)).toEqual(plain);
+    const kindOf = (name: string): unknown => plain.columns.find(({ column }) => column === name)?.kind;
+    expect([kindOf('branch_code'), kindOf('applied_on')]).toEqual(['categorical', 'date']);
+    const found = plain.columns.find(({ column }) => column === 'branch_code');
+    expect(found?.mostFrequent.map(({ value }) => value).sort()).toEqual([...codes].sort());
+    expect(found?.flags.map(({ code }) => code)).not.toContain('doubtful-dates');
+
+    const definition = await definitionOf(withCodes);
+    expect(definition.content.data).toMatchObject({ dateOrder: 'day-month-year', notDates: ['branch_code'] });
+    const { data, characteristics } = await replays(definition, withCodes);
+    expect(data.notDates).toEqual(['branch_code']);
+    const groups = JSON.stringify(characteristics.find(({ column }) => column === 'branch_code'));
+    for (const code of codes) expect(groups).toContain(code);
+  }, 240_000);
+});
+
 describe('dates with a time', () => {
   const clocks = ['T10:15:00Z', ' 10:15', 'T23:59:59.5-05:00'];
   const timed = iso.split('\n').map((line, row) => line.replace(/,(\d{4}-\d\d-\d\d),/, (_, day: string) => `,${row % 4 === 3 ? day.replaceAll('-', '/') : day + clocks[row % 4]},`)).join('\n'); // prettier-ignore

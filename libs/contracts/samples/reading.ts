@@ -21,6 +21,8 @@ export const ReadingChoices = z
     dateOrder: z.enum(['year-month-day', 'day-month-year', 'month-day-year']).optional(),
     /** Whether dates with a time, and those with the year first that are not written YYYY-MM-DD, are read as their day; left out, as in earlier readings: no. */
     dateTimes: z.enum(['text', 'day']).optional(),
+    /** Columns whose texts stay as they are: reference numbers in the form of a date, dates in another order; left out: none. */
+    notDates: z.array(z.string().min(1).max(mostHeadingCharacters)).max(200).optional(),
   })
   .meta({ id: 'ReadingChoices' });
 export type ReadingChoices = z.infer<typeof ReadingChoices>;

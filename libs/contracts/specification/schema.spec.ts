@@ -90,6 +90,10 @@ describe('a specification', () => {
     expect(accepted().data).not.toHaveProperty('dateTimes');
     expect(accepted({ data: { dateTimes: 'day' } }).data.dateTimes).toBe('day');
     expect(places({ data: { dateTimes: 'hour' } })).toEqual(['invalid-value data.dateTimes']);
+    expect(accepted().data).not.toHaveProperty('notDates');
+    expect(accepted({ data: { notDates: ['branch_code'] } }).data.notDates).toEqual(['branch_code']);
+    expect(places({ data: { notDates: [''] } })).toHaveLength(1);
+    expect(places({ data: { notDates: [] } })).toHaveLength(1);
     expect(places({ data: { dateOrder: 'day first' } })).toEqual(['invalid-value data.dateOrder']);
   });
 

@@ -49,6 +49,7 @@ const data: z.ZodType<DataReading, unknown> = checked<DataReading>(
     // No default is written in: a specification from before this key keeps its fingerprint.
     dateOrder: z.enum(['year-month-day', 'day-month-year', 'month-day-year']).optional(),
     dateTimes: z.enum(['text', 'day']).optional(),
+    notDates: z.array(columnName).min(1).optional(),
   }),
   (value, report) => {
     if (value.thousands === value.decimal)

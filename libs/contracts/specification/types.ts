@@ -29,6 +29,8 @@ export interface DataReading {
   dateOrder?: DateOrder | undefined;
   /** Dates with a time stay texts when left out. An optional extension of the format. */
   dateTimes?: DateTimes | undefined;
+  /** Columns whose texts stay as they are, whatever form of a date they have. An optional extension of the format. */
+  notDates?: string[] | undefined;
 }
 
 /**

@@ -1,5 +1,6 @@
 import type { ColumnFlag } from '@tallystone/contracts/samples/columns';
 import type { ColumnKind } from '@tallystone/contracts/samples/reading';
+import { ordersOfDate } from '../reading/dates';
 import { thin } from '../reading/thin';
 import { looksLikeAmount, looksLikeDateTime } from './quantity';
 import { type NumberFault, type NumberFormat, type NumberReader, ThousandsQuestion, isNumberSomehow, judgeFormat, numberReader } from '../reading/index';
@@ -41,6 +42,13 @@ export function isIsoDate(text: string): boolean {
 }
 
 const otherDate = /^(\d{1,2})[./-](\d{1,2})[./-](\d{2}|\d{4})$/;
+
+/** A date in one of the orders, as far as its form tells. One that is no day of the calendar in any order is a reference number. */
+function mayBeDay(text: string): boolean {
+  if (!otherDate.test(text)) return false;
+  const orders = ordersOfDate(text);
+  return orders === null || orders.dayFirst || orders.monthFirst;
+}
 
 /** What kind of values a column holds, from its distinct texts without the missing ones. */
 export function judgeKind(values: readonly Counted[], reader: NumberReader): JudgedKind {
@@ -101,7 +109,7 @@ export function thousandsFlag(format: NumberFormat, each: (ask: (text: string, c
 
 /** A column of texts that look like something else: numbers written otherwise, dates in an order that has to be asked for. */
 function doubtful(values: readonly Counted[], total: number, numbers: number, reader: NumberReader): Omit<JudgedKind, 'kind'> {
-  const dates = values.filter(({ text }) => otherDate.test(text));
+  const dates = values.filter(({ text }) => mayBeDay(text));
   if (sum(dates) >= mostlyNumbers * total) {
     const pairs = dates.map(({ text }) => otherDate.exec(text)).map((match) => [Number(match?.[1]), Number(match?.[2])]);
     const dayFirst = pairs.some(([first]) => first > 12);
@@ -115,7 +123,7 @@ function doubtful(values: readonly Counted[], total: number, numbers: number, re
     const twoDigits = dates.some(({ text }) => /\D\d{2}$/.test(text));
     const next = twoDigits
       ? 'To use them as dates, write the year with four digits in the file'
-      : 'To use them as dates, read the file again with their date order';
+      : 'To use them as dates, read the file again with their date order; where other columns have another order, write them as YYYY-MM-DD in the file and bring it in again';
     const finding = `Dates such as ${dates[0].text} (${order}). ${next}.`;
     return { against: finding, flags: [{ code: 'doubtful-dates', weight: 'look', finding }] };
   }

@@ -76,6 +76,14 @@ describe('what the quality table says of a column', () => {
     ).toEqual([]);
   });
 
+  it('takes reference numbers in the form of a date for texts, and dates of another order for such', () => {
+    const references = many(60, (k) => `${k % 7 === 3 ? '10-07' : `${40 + (k % 50)}-${58 + (k % 9)}`}-${1000 + k * 137}`);
+    expect(codes(references)).not.toContain('doubtful-dates');
+    const finding = profile(many(60, (k) => `${String((k % 12) + 1).padStart(2, '0')}/${13 + (k % 15)}/2023`)).flags.find(({ code }) => code === 'doubtful-dates')?.finding;
+    expect(finding).toContain('(with the month first)');
+    expect(finding).toContain('where other columns have another order, write them as YYYY-MM-DD in the file');
+  }); // prettier-ignore
+
   it('names both readings at once where the sign may part thousands', () => {
     const texts = many(60, (k) => `${(k % 9) + 1},${100 + k * 3}`);
     const finding = profile(['7,582', ...texts]).flags.find(({ code }) => code === 'numbers-as-text')?.finding;

@@ -1,6 +1,6 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { dateReader, isDateTime, noSuchDate, numbersOfDate } from './dates';
+import { dateReader, isDateTime, noSuchDate, ordersOfDate } from './dates';
 
 const of = (order: 'day-month-year' | 'month-day-year', missing: string[] = []) => {
   const read = dateReader(order, missing);
@@ -46,6 +46,14 @@ describe('dates in a stated order', () => {
     expect(dateReader('year-month-day', [])).toBeNull();
   });
 
+  it('are days in one order, in both or in none', () => {
+    expect(ordersOfDate('18-58-9762')).toEqual({ dayFirst: false, monthFirst: false });
+    expect(ordersOfDate('31/04/2024')).toEqual({ dayFirst: false, monthFirst: false });
+    expect(ordersOfDate('29.02.2024')).toEqual({ dayFirst: true, monthFirst: false });
+    expect(ordersOfDate('03/04/24')).toBeNull();
+    expect(ordersOfDate('2024-04-03')).toBeNull();
+  });
+
   it('come back from every day as the calendar of the language has it', () => {
     const day = fc.date({ min: new Date('0001-01-01T00:00:00Z'), max: new Date('9999-12-31T00:00:00Z'), noInvalidDate: true });
     fc.assert(
@@ -54,7 +62,9 @@ describe('dates in a stated order', () => {
         const [year, month, date] = iso.split('-').map((part, place) => (padded || place === 0 ? part : String(Number(part))));
         expect(of('day-month-year')([date, month, year].join(sign))).toBe(iso);
         expect(of('month-day-year')([month, date, year].join(sign))).toBe(iso);
-        expect(numbersOfDate([date, month, year].join(sign))).toEqual([Number(date), Number(month)]);
+        const either = Number(date) <= 12;
+        expect(ordersOfDate([date, month, year].join(sign))).toEqual({ dayFirst: true, monthFirst: either });
+        expect(ordersOfDate([month, date, year].join(sign))).toEqual({ dayFirst: either, monthFirst: true });
       }),
     );
   });
@@ -91,7 +101,7 @@ describe('dates with a time', () => {
       expect(dateReader('day-month-year', [], 'day')?.(`03/04/2024 ${time}`)).toBe('2024-04-03');
       expect(dateReader('month-day-year', [], 'day')?.(`3.4.2024 ${time}`)).toBe('2024-03-04');
       expect(read?.(`03/04/2024 ${time}`)).toBeNull();
-      expect(numbersOfDate(`03/04/2024 ${time}`)).toEqual([3, 4]);
+      expect(ordersOfDate(`13/04/2024 ${time}`)).toEqual({ dayFirst: true, monthFirst: false });
     }
     expect(dateReader('day-month-year', [])?.('03/04/2024 10:00')).toBeNull();
     expect(dateReader('day-month-year', [], 'day')?.('1/12/2024')).toBe('2024-12-01');

@@ -22,13 +22,19 @@ export const noSuchDate = Symbol('no such date');
 export type DateReader = (text: string) => string | null | typeof noSuchDate;
 
 /**
- * The first two numbers of a text in the form of a date whose order has to be stated, with a time or without, or null. Two-digit years do not say which
- * century.
+ * Whether a text in the form of a date whose order has to be stated, with a time or without, is a day of the calendar day first and month first; null for
+ * any other text. Two-digit years do not say which century.
+ *
+ * @example
+ * ordersOfDate('13/04/2024') // { dayFirst: true, monthFirst: false }
+ * ordersOfDate('18-58-9762') // { dayFirst: false, monthFirst: false }: a reference number
  */
-export function numbersOfDate(text: string): readonly [number, number] | null {
+export function ordersOfDate(text: string): { readonly dayFirst: boolean; readonly monthFirst: boolean } | null {
   if (!mayBeDate(text)) return null;
   const match = form.exec(text) ?? formWithTime.exec(text);
-  return match && [Number(match[1]), Number(match[3])];
+  if (match === null) return null;
+  const [first, second, year] = [Number(match[1]), Number(match[3]), Number(match[4])];
+  return { dayFirst: isDay(year, second, first), monthFirst: isDay(year, first, second) };
 }
 
 /** Whether a text becomes its day where dates with a time do: one with a time, or with the year first that is no ISO date. */

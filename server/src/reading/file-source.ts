@@ -22,13 +22,13 @@ export async function readForReplay(
   specification: Specification,
   options: Pick<ReadingOptions, 'onProgress' | 'signal'> = {},
 ): Promise<{ source: ColumnSource; sha256: string; rows: number }> {
-  const { encoding, delimiter, trim, decimal, thousands, dateOrder, dateTimes, missing } = specification.data;
+  const { encoding, delimiter, trim, decimal, thousands, dateOrder, dateTimes, notDates, missing } = specification.data;
   const { all, numbersOnly } = columnsRead(specification);
   const stream =
     typeof bytes === 'string' ? (createReadStream(bytes, { highWaterMark: 1 << 20 }) as AsyncIterable<Buffer>) : bytes;
   const file = await readColumns(
     stream,
-    { encoding, delimiter, trim, dateOrder, dateTimes, missing },
+    { encoding, delimiter, trim, dateOrder, dateTimes, notDates, missing },
     {
       ...options,
       keepLost: true,

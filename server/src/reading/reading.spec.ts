@@ -180,6 +180,10 @@ describe('reading a raw file', () => {
       'The cell in line 2, column 2 ("on"), is no date that exists, read with the day first.',
     );
     expect(wrong.columns).toEqual([]);
+    // A column that holds none is left as it is, whatever its texts look like, and the others are not.
+    const apart = await read('code,on\n31-04-2024,3/4/2024\n3-4-2024,04.03.2024\n', { ...stated, notDates: ['code'] });
+    expect(rowsOf(apart)).toEqual([['31-04-2024', '2024-04-03'], ['3-4-2024', '2024-03-04']]); // prettier-ignore
+    expect(codesOf(await read('code,on\n31-04-2024,31/04/2024\n', { ...stated, notDates: ['code'] }))).toEqual(['no-such-date']);
   });
 
   it('says after the cells that are listed what is true of how many more, with their columns', async () => {

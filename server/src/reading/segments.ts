@@ -122,6 +122,8 @@ class SegmentBuilder implements RecordSink {
   private readonly mostColumns: number;
 
   private readonly readDate: DateReader | null;
+  /** Of each column, whether its texts stay as they are. */
+  private notDates: readonly boolean[] = [];
 
   constructor(
     private readonly reading: ReadingChoices,
@@ -208,6 +210,7 @@ class SegmentBuilder implements RecordSink {
     if (fields.length === 1 && fields[0] === '') return;
     this.hasHeader = true;
     this.header = fields.map(detached);
+    this.notDates = this.header.map((name) => this.reading.notDates?.includes(name) ?? false);
     for (const problem of headerProblems(this.header, line)) this.book.add(problem);
     if (fields.length > this.mostColumns) {
       this.book.add({
@@ -230,6 +233,7 @@ class SegmentBuilder implements RecordSink {
   /** Puts ISO dates in the place of those in the stated order. */
   private readDates(fields: string[], line: number, read: DateReader): void {
     for (let index = 0; index < fields.length; index++) {
+      if (this.notDates[index]) continue;
       const iso = read(fields[index]);
       if (iso === null) continue;
       if (iso !== noSuchDate) fields[index] = iso;

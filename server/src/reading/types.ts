@@ -13,6 +13,8 @@ export interface ReadingChoices {
   dateOrder?: DateOrder | undefined;
   /** Whether dates with a time become their day; left out: none is touched. */
   dateTimes?: DateTimes | undefined;
+  /** Names of columns in which no field is touched; left out: none. */
+  notDates?: readonly string[] | undefined;
   /** Texts that mean "missing" and are therefore no dates, whatever their form. */
   missing?: readonly string[];
 }

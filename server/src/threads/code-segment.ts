@@ -16,7 +16,7 @@ export interface CodePayload {
   readonly bytes: Uint8Array;
   readonly rows: number;
   readonly header: readonly string[];
-  readonly choices: Pick<ReadingChoices, 'delimiter' | 'trim' | 'decimal' | 'missing' | 'dateOrder' | 'dateTimes'>;
+  readonly choices: Pick<ReadingChoices, 'delimiter' | 'trim' | 'decimal' | 'missing' | 'dateOrder' | 'dateTimes' | 'notDates'>;
   readonly mostBytes: number;
   readonly seed: number;
   /** Styles of the columns in earlier segments. */
@@ -70,6 +70,7 @@ export const codeSegment: Task<CodePayload, CodeAnswer> = (payload, control) => 
     dateOrder: choices.dateOrder,
     dateTimes: choices.dateTimes,
     missing: choices.missing,
+    ...(choices.notDates && { notDates: header.map((name) => choices.notDates?.includes(name) ?? false) }),
   };
   // The first segment has more rows than the others: what it took is not kept for them.
   const name = JSON.stringify({ ...form, first: payload.personal === null });

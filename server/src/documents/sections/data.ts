@@ -34,7 +34,7 @@ export function writeData(writer: Writer): void {
   writer.facts([
     [
       'Read as',
-      `${data.encoding}, delimiter ${data.delimiter === '\t' ? 'tab' : `“${data.delimiter}”`}, decimal sign “${data.decimal}”${dateWords[data.dateOrder ?? 'year-month-day']}${data.dateTimes === 'day' ? ', dates with a time as their day' : ''}`,
+      `${data.encoding}, delimiter ${data.delimiter === '\t' ? 'tab' : `“${data.delimiter}”`}, decimal sign “${data.decimal}”${dateWords[data.dateOrder ?? 'year-month-day']}${data.dateTimes === 'day' ? ', dates with a time as their day' : ''}${data.notDates ? `; no dates, whatever their form: ${data.notDates.join(', ')}` : ''}`,
     ],
     ['Missing', data.missing.map((token) => (token === '' ? '(empty)' : token)).join(', ')],
   ]);

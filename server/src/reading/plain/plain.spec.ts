@@ -42,6 +42,7 @@ async function fast(bytes: Buffer, choices: ReadingChoices, size: number): Promi
         dateOrder: choices.dateOrder,
         dateTimes: choices.dateTimes,
         missing: choices.missing ?? [],
+        notDates: file.facts().header.map((name) => choices.notDates?.includes(name) ?? false),
       });
       coder.begin([], []);
       coder.add(piece);
@@ -130,9 +131,9 @@ describe('the fast reader', () => {
       .chain((width) => fc.array(fc.array(date, { minLength: width, maxLength: width }), { minLength: 1, maxLength: 30 }));
     const outcomes = { read: 0, 'not plain': 0 };
     await fc.assert(
-      fc.asyncProperty(table, sizes, fc.constantFrom('day-month-year' as const, 'month-day-year' as const, undefined), fc.constantFrom('day' as const, undefined), fc.boolean(), async (rows, cut, dateOrder, dateTimes, quoted) => {
+      fc.asyncProperty(table, sizes, fc.constantFrom('day-month-year' as const, 'month-day-year' as const, undefined), fc.constantFrom('day' as const, undefined), fc.constantFrom(undefined, ['c0'], ['c1', 'elsewhere']), fc.boolean(), async (rows, cut, dateOrder, dateTimes, notDates, quoted) => {
         const bytes = Buffer.from(stringify([rows[0].map((_, place) => `c${place}`), ...rows], { quoted }));
-        const choices = { ...choicesOf(',', true), dateOrder, dateTimes, missing: ['', 'NA', '00/00/0000'] };
+        const choices = { ...choicesOf(',', true), dateOrder, dateTimes, notDates, missing: ['', 'NA', '00/00/0000'] };
         outcomes[await same(bytes, choices, cut)]++;
       }),
       { numRuns: 400 },
@@ -149,6 +150,9 @@ describe('the fast reader', () => {
     expect(timed.segments.flat(2)).toEqual(['2024-03-04', '2024-03-04', '2024-03-04', '2024-03-04']);
     expect(new Set(timed.keys).size).toBe(1);
     expect(await fast(Buffer.from('a\n2024-03-04 25:00\n'), { ...choicesOf(',', true), dateTimes: 'day' }, 9)).toContain('does not exist');
+    const apart = await fast(Buffer.from('a,b\n31-4-2024,3/4/2024\n3-4-2024,"4/4/2024"\n'), { ...choicesOf(',', true), dateOrder: 'day-month-year', notDates: ['a'] }, 9);
+    if (typeof apart === 'string') throw new Error(apart);
+    expect(apart.segments.flat(2)).toEqual(['31-4-2024', '2024-04-03', '3-4-2024', '2024-04-04']);
     expect(await fast(Buffer.from('a\n31/4/2024\n'), { ...choicesOf(',', true), dateOrder: 'day-month-year' }, 9)).toContain('does not exist');
   }); // prettier-ignore
 

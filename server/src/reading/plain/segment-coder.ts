@@ -15,6 +15,8 @@ export interface SegmentForm extends FieldForm {
   readonly dateOrder?: DateOrder | undefined;
   readonly dateTimes?: DateTimes | undefined;
   readonly missing?: readonly string[];
+  /** Of each column, whether its texts stay as they are, whatever form of a date they have; left out: of none. */
+  readonly notDates?: readonly boolean[];
 }
 
 /**
@@ -39,7 +41,8 @@ export class SegmentCoder {
     const dates = dateRewriter(form.dateOrder, form.missing ?? [], form.dateTimes);
     this.coders = Array.from(
       { length: form.width },
-      (_, position) => new ColumnCoder(position, form.width, form.sign, form.mostRows, form.seed, dates),
+      (_, position) =>
+        new ColumnCoder(position, form.width, form.sign, form.mostRows, form.seed, form.notDates?.[position] ? null : dates),
     );
     this.columns = this.coders;
   }

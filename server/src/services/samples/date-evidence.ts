@@ -1,6 +1,6 @@
 import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import type { ReadingChoices } from '@tallystone/contracts/samples/reading';
-import { numbersOfDate } from '../../reading/dates';
+import { dateReader, noSuchDate, ordersOfDate } from '../../reading/dates';
 
 interface Row {
   readonly line: number;
@@ -36,12 +36,13 @@ export function dateEvidence(header: readonly string[], rows: readonly Row[], mi
     const values = rows
       .map(({ line, cells }) => ({ column, text: cells[position] ?? '', line }))
       .filter(({ text }) => !skipped.has(text))
-      .map((example) => ({ example, numbers: numbersOfDate(example.text) }));
-    const dates = values.flatMap(({ example, numbers }) => (numbers === null ? [] : [{ example, numbers }]));
+      .map((example) => ({ example, orders: ordersOfDate(example.text) }));
+    // Only a day that exists is evidence: reference numbers have the form of dates, too.
+    const dates = values.flatMap(({ example, orders }) => (orders?.dayFirst || orders?.monthFirst ? [{ example, orders }] : []));
     if (dates.length === 0 || dates.length < mostlyDates * values.length) return;
     columns.push({ column, position, example: dates[0].example });
-    dayFirst = earlier(dayFirst, dates.find(({ numbers: [first, second] }) => first > 12 && second <= 12)?.example);
-    monthFirst = earlier(monthFirst, dates.find(({ numbers: [first, second] }) => second > 12 && first <= 12)?.example);
+    dayFirst = earlier(dayFirst, dates.find(({ orders }) => !orders.monthFirst)?.example);
+    monthFirst = earlier(monthFirst, dates.find(({ orders }) => !orders.dayFirst)?.example);
   });
   return { columns, dayFirst, monthFirst };
 }
@@ -58,7 +59,8 @@ export function dateReason({ columns, dayFirst, monthFirst }: DateEvidence): str
   if (columns.length === 0) return 'No column holds dates other than YYYY-MM-DD.';
   const say = ({ text, line, column }: Example, order: string): string =>
     `${text} in line ${line} (${column}) can only be ${order} first`;
-  if (dayFirst && monthFirst) return `${say(dayFirst, 'day')}, and ${say(monthFirst, 'month')}: no order reads both.`;
+  if (dayFirst && monthFirst)
+    return `${say(dayFirst, 'day')}, and ${say(monthFirst, 'month')}: no order reads both.${dayFirst.column === monthFirst.column ? '' : ' Under either, the other column stays text; to have the dates of both, write them as YYYY-MM-DD in the file and bring it in again.'}`;
   if (dayFirst) return `${say(dayFirst, 'day')}; no value looked at says month first.`;
   if (monthFirst) return `${say(monthFirst, 'month')}; no value looked at says day first.`;
   const [{ example }] = columns;
@@ -74,3 +76,53 @@ export function dateQuestion(evidence: DateEvidence): ProblemItem {
     where: { column, position: position + 1 },
   };
 }
+
+/** A column that has the form of dates, whose texts are kept as they are under the order that is stated. */
+export interface NotDates {
+  readonly column: string;
+  readonly position: number;
+  readonly example: Example;
+  /** Its dates have another order; otherwise they are no dates at all. */
+  readonly otherOrder: boolean;
+}
+
+/** Where fewer of the values in the form of a date are days of the calendar in any order, they are something else: two pairs of digits at will are in 6 %. */
+const mostlyDays = 0.8;
+
+/**
+ * Columns in which reading under these choices would find days that do not exist because they hold no dates, or dates in the other order alone. A
+ * column whose own values speak for the stated order is none of them: what does not exist there is wrong in the file.
+ */
+export function columnsNotDates(
+  header: readonly string[],
+  rows: readonly Row[],
+  { dateOrder, dateTimes, missing }: Pick<ReadingChoices, 'dateOrder' | 'dateTimes' | 'missing'>,
+): NotDates[] {
+  const [read, swapped] = [dateOrder, other(dateOrder)].map((order) => dateReader(order, missing, dateTimes));
+  if (!read || !swapped) return [];
+  return header.flatMap((column, position) => {
+    let formed = 0;
+    let days = 0;
+    let here = 0;
+    let onlyHere = 0;
+    let example: Example | null = null;
+    for (const { cells, line } of rows) {
+      const text = cells[position] ?? '';
+      const stated = read(text);
+      if (stated === null) continue;
+      const isHere = stated !== noSuchDate;
+      const isThere = swapped(text) !== noSuchDate;
+      formed++;
+      if (isHere || isThere) days++;
+      if (isHere) here++;
+      if (isHere && !isThere) onlyHere++;
+      if (!isHere) example ??= { column, text, line };
+    }
+    if (example === null) return [];
+    const otherOrder = days >= mostlyDays * formed;
+    return otherOrder && (onlyHere > 0 || here >= mostlyDates * formed) ? [] : [{ column, position, example, otherOrder }];
+  });
+}
+
+const other = (order: ReadingChoices['dateOrder']): ReadingChoices['dateOrder'] =>
+  order === 'day-month-year' ? 'month-day-year' : order === 'month-day-year' ? 'day-month-year' : order;

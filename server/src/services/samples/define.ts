@@ -72,12 +72,13 @@ export function define(draft: DraftContent, sample: DefinedSample): Defined {
   };
 }
 
-/** What a specification says by leaving it out, so that it keeps the fingerprint that it always had: year, month, day, and times as texts. */
-function withoutDefault({ dateOrder, dateTimes, ...reading }: ReadingChoices): ReadingChoices {
+/** What a specification says by leaving it out, so that it keeps the fingerprint that it always had: year, month, day, times as texts, and no column apart. */
+function withoutDefault({ dateOrder, dateTimes, notDates, ...reading }: ReadingChoices): ReadingChoices {
   return {
     ...reading,
     ...(dateOrder === undefined || dateOrder === 'year-month-day' ? {} : { dateOrder }),
     ...(dateTimes === 'day' && { dateTimes }),
+    ...(notDates && notDates.length > 0 && { notDates }),
   };
 }
 

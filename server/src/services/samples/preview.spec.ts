@@ -147,6 +147,67 @@ describe('the date order of a preview', () => {
   });
 });
 
+describe('columns in the form of dates that hold none under the order', () => {
+  const table = (header: string, ...columns: readonly (readonly string[])[]): Buffer =>
+    Buffer.from(`${header}\n${columns[0].map((_, row) => columns.map((column) => column[row]).join(',')).join('\n')}\n`);
+  const many = (write: (row: number) => string): string[] => Array.from({ length: 300 }, (_, row) => write(row));
+  const two = (value: number): string => String(value).padStart(2, '0');
+  const dayFirst = many((row) => `${two(1 + (row % 28))}/${two(1 + (row % 12))}/2023`);
+  const monthFirst = many((row) => `${two(1 + (row % 12))}/${two(1 + (row % 28))}/2023`);
+  // Some of them are days, as of numbers at will 6 % are.
+  const references = many((row) => (row % 20 === 7 ? `10-07-${1900 + (row % 90)}` : `${10 + ((row * 7) % 89)}-${13 + ((row * 11) % 86)}-${1000 + row}`));
+  const look = (bytes: Buffer, chosen: Parameters<typeof previewOf>[2] = {}) => previewOf(bytes, true, chosen);
+
+  it('stay text where they are reference numbers, and the order is that of the dates', async () => {
+    const bytes = table('branch_code,applied_on', references, dayFirst);
+    const shown = await look(bytes);
+    expect(shown.choices).toMatchObject({ dateOrder: 'day-month-year', notDates: ['branch_code'] });
+    expect(shown.problems).toEqual([]);
+    expect(shown.columns.map(({ kind }) => kind)).toEqual(['categorical', 'date']);
+    expect(shown.rows[0].cells).toEqual([references[0], '2023-01-01']);
+    expect(shown.rows[7].cells[0]).toBe(references[7]);
+    expect(shown.warnings).toMatchObject([{ code: 'not-dates', where: { column: 'branch_code', position: 1 } }]);
+    expect(shown.warnings[0].message).toBe(
+      `branch_code: ${references[0]} in line 2 is no day in any order: the column has the form of dates and holds none, and stays text.`,
+    );
+    // Alone in a file they ask for no order, and nothing has to be kept apart.
+    const alone = await look(table('branch_code,n', references, references.map((_, row) => String(row))));
+    expect(alone.choices.dateOrder).toBe('year-month-day');
+    expect(alone.choices).not.toHaveProperty('notDates');
+    expect([alone.problems, alone.warnings]).toEqual([[], []]);
+  });
+
+  it('stay text where their dates have the other order, and what can be done is said', async () => {
+    const bytes = table('opened,applied_on', monthFirst, dayFirst);
+    const asked = await look(bytes);
+    expect(asked.choices).not.toHaveProperty('dateOrder');
+    expect(asked.problems[0].message).toContain('no order reads both. Under either, the other column stays text; to have the dates of both, write them as YYYY-MM-DD');
+    const day = await look(bytes, { dateOrder: 'day-month-year' });
+    expect([day.problems, day.choices.notDates, day.columns.map(({ kind }) => kind)]).toEqual([[], ['opened'], ['categorical', 'date']]);
+    expect(day.warnings.map(({ message }) => message)).toEqual([
+      `opened: ${monthFirst[12]} in line 14 is no day with the day first: its dates have the other order, and it stays text. To have the dates of both, write them as YYYY-MM-DD in the file and bring it in again.`,
+    ]);
+    const month = await look(bytes, { dateOrder: 'month-day-year' });
+    expect([month.problems, month.choices.notDates]).toEqual([[], ['applied_on']]);
+    expect((await look(bytes, { dateOrder: 'year-month-day' })).choices).not.toHaveProperty('notDates');
+  });
+
+  it('are refused where their own values speak for the order: a day that does not exist is wrong in the file', async () => {
+    const typo = dayFirst.map((date, row) => (row === 200 ? '31/02/2023' : date));
+    const shown = await look(table('n,applied_on', typo.map((_, row) => String(row)), typo));
+    expect(shown.choices).not.toHaveProperty('notDates');
+    expect(shown.problems).toMatchObject([{ code: 'no-such-date', where: { line: 202, column: 'applied_on' } }]);
+  });
+
+  it('are those that are stated, where they are', async () => {
+    const bytes = table('branch_code,applied_on', references, dayFirst);
+    const none = await look(bytes, { notDates: [] });
+    expect(none.problems.map(({ code }) => code)).toContain('no-such-date');
+    const other = await look(bytes, { dateOrder: 'day-month-year', notDates: ['branch_code', 'applied_on'] });
+    expect(other.rows[0].cells).toEqual([references[0], dayFirst[0]]);
+  });
+}); // prettier-ignore
+
 describe('a preview of the beginning of a file', () => {
   const part = (text: string | Buffer, encoding: 'utf-8' | 'utf-16le' | 'utf-16be' = 'utf-8') =>
     previewOf(Buffer.isBuffer(text) ? text : Buffer.from(text), false, { delimiter: ',', encoding });

@@ -2,11 +2,19 @@ import type { ProblemItem } from '@tallystone/contracts/problems/schema';
 import type { Preview, PreviewRequest, ReadingChoices } from '@tallystone/contracts/samples/reading';
 import { type CsvError, parse } from 'csv-parse/sync';
 import type { Context } from '../../context';
-import { dateReader, isDateTime } from '../../reading/dates';
+import { dateReader, isDateTime, orderWords } from '../../reading/dates';
 import { decoderOf, wholeLines } from '../../reading/encodings';
 import { numberReader, readSegments, sniff } from '../../reading/index';
 import { readChunks } from '../../storage/rawFiles';
-import { type DateEvidence, dateEvidence, dateQuestion, dateReason, decidedOrder } from './date-evidence';
+import {
+  type DateEvidence,
+  type NotDates,
+  columnsNotDates,
+  dateEvidence,
+  dateQuestion,
+  dateReason,
+  decidedOrder,
+} from './date-evidence';
 import { DoubtfulLines } from './doubtful-lines';
 import { doubtfulLinesIn } from './doubtful-places';
 import type { FoundSample } from './find-sample';
@@ -66,9 +74,12 @@ export async function previewOf(bytes: Buffer, whole: boolean, chosen: PreviewRe
   const dateOrder = chosen.dateOrder ?? decidedOrder(evidence);
   const timed = columnsWithTimes(table, missing);
   const dateTimes = chosen.dateTimes ?? (timed.length > 0 ? 'day' : undefined);
-  const choices: ReadingChoices = { ...partial, missing, ...(dateOrder && { dateOrder }), ...(dateTimes && { dateTimes }) };
+  const dated: ReadingChoices = { ...partial, missing, ...(dateOrder && { dateOrder }), ...(dateTimes && { dateTimes }) };
+  const apart = chosen.notDates ? [] : columnsNotDates(table.header, table.rows, dated);
+  const notDates = chosen.notDates ?? apart.map(({ column }) => column);
+  const choices: ReadingChoices = { ...dated, ...(notDates.length > 0 && { notDates }) };
   const { problems, records, doubtful } = await problemsOf(bytes, whole, choices);
-  const rows = withDates(table.rows, choices);
+  const rows = withDates(table, choices);
   const columns = table.header.map((column, position) => judgeColumn(column, position, rows, choices));
   return {
     choices,
@@ -84,7 +95,8 @@ export async function previewOf(bytes: Buffer, whole: boolean, chosen: PreviewRe
       ...(dateTimes === 'day'
         ? timed.map((one) => timesWarning(one, dateReader(dateOrder, missing, dateTimes)?.(one.example)))
         : []),
-      ...columns.flatMap(({ warning }) => (warning ? [warning] : [])),
+      ...apart.map((one) => notDatesWarning(one, choices)),
+      ...columns.flatMap(({ column, warning }) => (warning && !notDates.includes(column) ? [warning] : [])),
     ],
   };
 }
@@ -114,16 +126,30 @@ const timesWarning = ({ column, position, example }: Timed, day: unknown): Probl
   where: { column, position: position + 1 },
 });
 
+/** Said of each column: what it is taken for, and what can be done where that is not what was meant. */
+const notDatesWarning = (
+  { column, position, example: { text, line }, otherOrder }: NotDates,
+  { dateOrder }: ReadingChoices,
+): ProblemItem => ({
+  code: 'not-dates',
+  message: otherOrder
+    ? `${column}: ${text} in line ${line} is no day ${orderWords[dateOrder ?? 'year-month-day']}: its dates have the other order, and it stays text. To have the dates of both, write them as YYYY-MM-DD in the file and bring it in again.`
+    : `${column}: ${text} in line ${line} is no day in any order: the column has the form of dates and holds none, and stays text.`,
+  where: { column, position: position + 1 },
+});
+
 interface Table {
   header: string[];
   rows: { record: number; line: number; cells: string[] }[];
 }
 
 /** The rows as they would be read: dates in the stated order as ISO dates. One that does not exist stays, for its problem to name. */
-function withDates(rows: Table['rows'], { dateOrder, dateTimes, missing }: ReadingChoices): Table['rows'] {
+function withDates({ header, rows }: Table, { dateOrder, dateTimes, missing, notDates = [] }: ReadingChoices): Table['rows'] {
   const read = dateReader(dateOrder, missing, dateTimes);
   if (read === null) return rows;
-  const cell = (text: string): string => {
+  const kept = header.map((column) => notDates.includes(column));
+  const cell = (text: string, position: number): string => {
+    if (kept[position]) return text;
     const iso = read(text);
     return typeof iso === 'string' ? iso : text;
   };

@@ -45,13 +45,13 @@ export async function readPlainly(reading: Reading, readingId: string): Promise<
   let writing: Promise<void> = Promise.resolve();
 
   const code = async (records: RecordsOfSegment): Promise<Extract<CodeAnswer, { notPlain: null }>> => {
-    const { delimiter, trim, decimal, missing, dateOrder, dateTimes } = choices;
+    const { delimiter, trim, decimal, missing, dateOrder, dateTimes, notDates } = choices;
     const answer = await runInThread(
       'sample.code',
       {
         ...records,
         header: file.facts().header,
-        choices: { delimiter, trim, decimal, missing, dateOrder, dateTimes },
+        choices: { delimiter, trim, decimal, missing, dateOrder, dateTimes, notDates },
         mostBytes: mostCellCharacters,
         seed,
         styles,

@@ -102,6 +102,39 @@ describe('ReadingPage', () => {
     server.verify();
   });
 
+  it('lets the file say anew which columns hold no dates, and tells those of a reading that stays', async () => {
+    const stored: ReadingChoices = { ...reading, dateOrder: 'day-month-year', notDates: ['branch_code'] };
+    fixture.detectChanges();
+    server.expectOne(address).flush({ ...sample, reading: stored, state: 'ready', problems: [], abilities: ['read-file'] });
+    await settled();
+    const asked = server.expectOne(`${address}/preview`);
+    // Under another order it would be other columns.
+    expect(asked.request.body).toEqual({ ...reading, dateOrder: 'day-month-year' });
+    asked.flush({ ...preview, choices: stored, problems: [], doubtful: { count: 0, lines: [] } });
+    await settled();
+    [...page().querySelectorAll('button')].find(({ textContent }) => textContent.includes('Read the file again'))?.click();
+    const dialog = await vi.waitFor(() => {
+      const button = [...document.querySelectorAll<HTMLElement>('mat-dialog-container button')].find(
+        ({ textContent }) => textContent?.trim() === 'Read again',
+      );
+      if (!button) throw new Error('no dialog yet');
+      return button;
+    }, 5_000);
+    dialog.click();
+    const started = await vi.waitFor(() => server.expectOne(`${address}/readings`), 5_000);
+    expect(started.request.body).toEqual(stored);
+  });
+
+  it('tells which columns hold no dates where the reading stays', async () => {
+    fixture.detectChanges();
+    server
+      .expectOne(address)
+      .flush({ ...sample, reading: { ...reading, notDates: ['branch_code'] }, state: 'ready', problems: [], abilities: [] });
+    await settled();
+    expect(page().textContent).toContain('No dates, whatever their form');
+    expect(page().textContent).toContain('branch_code');
+  });
+
   describe('of a file whose last reading found lines beyond the preview', () => {
     const clean: Preview = { ...preview, doubtful: { count: 0, lines: [] }, problems: [], looked: { records: 2, bytes: 10, whole: false } };
     const refusal = { code: 'ragged', message: 'Line 60002 has 1 field where the header has 2.', where: { line: 60_002 } };

@@ -103,6 +103,10 @@ import { SampleSteps } from '../ui/sample-steps';
           <dd>{{ signWords(reading.thousands) }}</dd>
           <dt>Date order</dt>
           <dd>{{ orderWords(reading.dateOrder) }}</dd>
+          @if (reading.notDates; as columns) {
+            <dt>No dates, whatever their form</dt>
+            <dd>{{ columns.join(', ') }}</dd>
+          }
           <dt>Missing</dt>
           <dd>{{ missingWords() }}</dd>
         </dl>
@@ -216,7 +220,9 @@ export class ReadingPage {
   }
 
   protected async look(choices: Partial<ReadingChoices>): Promise<void> {
-    this.chosen = { ...this.chosen, ...choices };
+    // Which columns hold no dates follows from the file and the order: it is judged anew with each choice.
+    const { notDates: _, ...chosen } = { ...this.chosen, ...choices };
+    this.chosen = chosen;
     const preview = await this.looking.run(() => this.samples.preview(this.modelId(), this.sampleId(), this.chosen));
     if (preview) this.preview.set(preview);
   }
