@@ -53,5 +53,8 @@ describe('ProblemList', () => {
     fixture.componentRef.setInput('error', new Problem(422, 'invalid', 'Not valid', message, [item]));
     await fixture.whenStable();
     expect((fixture.nativeElement as HTMLElement).textContent?.split(message)).toHaveLength(2);
+    // The message begins with its line, which stands there once, too.
+    const place = (fixture.nativeElement as HTMLElement).querySelector('li')?.textContent?.replace(/\s+/g, ' ').trim();
+    expect(place).toBe(message);
   });
 });

@@ -22,7 +22,7 @@ const saidAlready: readonly string[] = ['lines', 'values', 'count'];
           <ul>
             @for (item of shown(); track $index) {
               <li>
-                @if (place(item.where); as place) {
+                @if (place(item); as place) {
                   <span class="place">{{ place }}</span>
                 }
                 {{ item.message }}
@@ -92,9 +92,9 @@ export class ProblemList {
   protected readonly shown = computed(() => this.problem()?.problems.slice(0, this.limit()) ?? []);
 
   /** { line: 812, column: 'income' } reads "line 812, column income". How many lines or values, and which, the message says itself. */
-  protected place(where: Readonly<Record<string, unknown>> | undefined): string | null {
-    if (!where) return null;
+  protected place({ where, message }: Problem['problems'][number]): string | null {
     const parts = Object.entries(where)
+      .filter(([key, value]) => key !== 'line' || !message.startsWith(`Line ${String(value)}:`))
       .filter(([key, value]) => value !== null && value !== undefined && typeof value !== 'object' && !saidAlready.includes(key))
       .map(([key, value]) => (key === 'path' || key === 'field' ? String(value) : `${key} ${String(value)}`));
     return parts.length > 0 ? parts.join(', ') : null;
