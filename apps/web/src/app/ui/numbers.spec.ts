@@ -79,6 +79,10 @@ describe('numbers', () => {
     expect(binWords('12450 and over')).toBe('12\u202F450 and over');
     expect(binWords('over 1e-7 to 25')).toBe('over 1e\u22127 to 25');
     for (const label of ['35-44', 'broker, web-2000', 'no bureau record', 'missing']) expect(binWords(label)).toBe(label);
+    // Of hundreds of categories the first; a single long name, and a list that can be read, stay.
+    const towns = (count: number): string => Array.from({ length: count }, (_, i) => `Town ${100 + i}`).join(', ');
+    expect(binWords(towns(500))).toMatch(/^Town 100, Town 101, .*, Town 111 and others$/);
+    for (const label of [towns(20), 'x'.repeat(300)]) expect(binWords(label)).toBe(label);
   });
 
   it('write the values of a sentence, and leave words with digits alone', () => {

@@ -96,8 +96,19 @@ export function written(value: number | string): string {
   return [[grouped, ...fraction].join('.'), ...exponent].join('e').replace('e+', 'e').replaceAll('-', MINUS);
 }
 
-/** The label of a bin, as results state it, with its numbers as they are read: "-244 to under 1250" is "−244 to under 1 250". A category stays. */
-export const binWords = (label: string): string => (range.test(label) ? label.replace(new RegExp(numeral, 'g'), written) : label);
+/** A bin may hold hundreds of categories: of so long a label the first names stand, as far as they fit into this many characters. */
+const longLabel = 240;
+const namesShown = 120;
+
+/**
+ * The label of a bin, as results state it, with its numbers as they are read: "-244 to under 1250" is "−244 to under 1 250". Categories stay, the first
+ * of very many: "Alderholm, Brack and others".
+ */
+export function binWords(label: string): string {
+  if (range.test(label)) return label.replace(new RegExp(numeral, 'g'), written);
+  const end = label.length > longLabel ? label.lastIndexOf(', ', namesShown) : -1;
+  return end > 0 ? `${label.slice(0, end)} and others` : label;
+}
 
 /** A sentence in which every number is a value: "Cut moved from 18762.23 to -244" is "Cut moved from 18 762.23 to −244". */
 export const valueWords = (sentence: string): string =>

@@ -28,7 +28,15 @@ import { type PointsBlock } from './scorecard-view';
         <tbody>
           @for (row of block.rows; track $index) {
             <tr>
-              <th scope="row">{{ words(row.label) }}</th>
+              <th scope="row">
+                {{ row.words }}
+                @if (row.rest) {
+                  <details>
+                    <summary>All of them</summary>
+                    {{ row.label }}
+                  </details>
+                }
+              </th>
               <td class="n second">{{ share(row.share) }}</td>
               <td class="n second">{{ woe(row.woe) }}</td>
               <td class="n strong">{{ whole(row.points) }}</td>
@@ -62,12 +70,17 @@ export class PointsList {
       rows: block.attributes.map((attribute) => {
         const end = x(attribute.points - block.neutral);
         // Shorter than the line of the neutral points is wide, a bar would only blur it.
-        return { ...attribute, path: Math.abs(end - x(0)) < 1.5 ? '' : `M${zero} 7H${end.toFixed(1)}` };
+        const words = binWords(attribute.label);
+        return {
+          ...attribute,
+          words,
+          rest: words.endsWith(' and others') && words !== attribute.label,
+          path: Math.abs(end - x(0)) < 1.5 ? '' : `M${zero} 7H${end.toFixed(1)}`,
+        };
       }),
     }));
   });
 
-  protected readonly words = binWords;
   protected readonly woe = woe;
   protected readonly whole = points;
   protected readonly share = share;
